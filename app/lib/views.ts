@@ -1,0 +1,134 @@
+import type { IntakeMessage, IntakeQuestion } from "./intake/report.ts";
+import type { SiftRecipe } from "./recipe/recipe.ts";
+import type { SiftResult } from "./recipe/result.ts";
+
+/** What loaders hand to components: plain JSON, nothing a reader of the page may not see. */
+
+export type Role = "owner" | "analyst" | "reader" | "guest";
+export type EnergyKind = "electronic" | "zero-point" | "enthalpy" | "free";
+
+export interface LevelView {
+  id: string;
+  name: string;
+  unit: string;
+  /** Accepted frames with a value; `missing` are the accepted ones without. */
+  count: number;
+  missing: number;
+  /** From 1, in order of arrival: fixes hue and marker. */
+  ordinal: number;
+  energyKind: EnergyKind;
+  temperature: number | null;
+}
+
+export interface FileView {
+  position: number;
+  name: string;
+  format: string;
+  sha256: string;
+  bytes: number;
+  firstFrame: number;
+  frames: number;
+}
+
+export interface EnsembleView {
+  id: string;
+  name: string;
+  formula: string;
+  atoms: number;
+  frames: number;
+  accepted: number;
+  remarked: number;
+  held: number;
+  openQuestions: number;
+  chirality: "achiral" | "chiral" | "unsure";
+  chiralityNote: string;
+  example: boolean;
+  team: { id: string; name: string };
+  series: { id: string; name: string };
+  /** Atomic numbers, and bonds as flat pairs from 0. */
+  elements: number[];
+  bonds: number[];
+  levels: LevelView[];
+  files: FileView[];
+  createdAt: string;
+  changedAt: string;
+  /** Of the person who looks. */
+  role: Role;
+  /** True where that person may take in, compute, hold and release. */
+  mayCompute: boolean;
+}
+
+export type SiftStatus = "queued" | "running" | "done" | "failed" | "cancelled";
+
+export interface SiftView {
+  id: string;
+  status: SiftStatus;
+  progress: number;
+  recipe: SiftRecipe;
+  result: SiftResult | null;
+  error: string | null;
+  createdAt: string;
+  /** False where frames were held, released or changed since. */
+  current: boolean;
+}
+
+export interface FrameView {
+  number: number;
+  file: number;
+  line: number;
+  label: string | null;
+  state: "accepted" | "remarked" | "held";
+  holdReason: string | null;
+  note: string | null;
+  /** A person may release it; false for another species and for what cannot be read. */
+  releasable: boolean;
+  /** Its coordinates can be shown with the ensemble's atoms. */
+  showable: boolean;
+}
+
+export interface IntakeView {
+  /** One character a frame in file order: a accepted, r remarked, h held. */
+  strip: string;
+  /** Frames that are held or remarked, up to 500 of each. */
+  held: FrameView[];
+  remarked: FrameView[];
+  messages: IntakeMessage[];
+  questions: IntakeQuestion[];
+}
+
+/** Row of the table of ensembles. */
+export interface EnsembleRow {
+  id: string;
+  name: string;
+  formula: string;
+  series: { id: string; name: string };
+  frames: number;
+  held: number;
+  openQuestions: number;
+  levels: { name: string; ordinal: number }[];
+  fileNames: string[];
+  /** Of the newest current sift. */
+  sift: {
+    id: string;
+    status: SiftStatus;
+    progress: number;
+    distinct: number | null;
+    /** Populations at 298.15 K in falling order, up to 60, then the rest in one. */
+    shares: number[];
+    lowest: number | null;
+    effectiveCount: number | null;
+  } | null;
+  changedAt: string;
+}
+
+export interface LogbookRow {
+  id: number;
+  at: string;
+  who: string;
+  /** Person, token or the product itself. */
+  by: "person" | "token" | "product";
+  type: string;
+  /** One sentence. */
+  text: string;
+  detail: string | null;
+}
