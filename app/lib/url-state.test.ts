@@ -1,0 +1,119 @@
+import fc from "fast-check";
+import { describe, expect, test } from "vitest";
+import {
+  defaultState,
+  MAX_SELECTED,
+  readState,
+  searchOf,
+  type WorkbenchState,
+  writeState,
+} from "./url-state.ts";
+
+const SEED = 20261201;
+
+describe("reading", () => {
+  test("an empty address is the default state", () => {
+    expect(readState(new URLSearchParams())).toEqual(defaultState());
+  });
+
+  test("every name of the address is read", () => {
+    const params = new URLSearchParams(
+      "v=1&sift=abcdefghij234567&T=310.5&w=2.5&sel=11,235,105&at=3,4,5,6&h=all&m=side&weights=degeneracy&sort=rmsd.down",
+    );
+    expect(readState(params)).toEqual({
+      sift: "abcdefghij234567",
+      temperatureK: 310.5,
+      windowKcal: 2.5,
+      selected: [11, 235, 105],
+      atoms: [2, 3, 4, 5],
+      hydrogens: "all",
+      mode: "side",
+      weights: "degeneracy",
+      sort: { column: "rmsd", descending: true },
+    } satisfies WorkbenchState);
+  });
+
+  test("an emptied selection is not the same as none made", () => {
+    expect(readState(new URLSearchParams("sel=")).selected).toEqual([]);
+    expect(readState(new URLSearchParams("")).selected).toBeNull();
+  });
+
+  test("no window is written as a word", () => {
+    expect(readState(new URLSearchParams("w=none")).windowKcal).toBeNull();
+  });
+
+  test.each([
+    "T=-5",
+    "T=0",
+    "T=1e9",
+    "T=298,15",
+    "T=NaN",
+    "w=-1",
+    "w=",
+    "sift=../../etc",
+    "sift=ABCDEFGHIJ234567",
+    "at=0",
+    "at=x",
+    "h=some",
+    "m=",
+    "weights=9",
+    "sort=up",
+    "sort=<b>.up",
+    "v=77",
+  ])("nonsense is taken as absent: %s", (query) => {
+    expect(readState(new URLSearchParams(query))).toEqual(defaultState());
+  });
+
+  test("doubles and rubbish among frames are passed over, and the list has an end", () => {
+    expect(readState(new URLSearchParams("sel=5,5,x,-1,0,007,12")).selected).toEqual([5, 12]);
+    const long = Array.from({ length: 500 }, (_, i) => i + 1).join(",");
+    expect(readState(new URLSearchParams(`sel=${long}`)).selected).toHaveLength(MAX_SELECTED);
+    expect(readState(new URLSearchParams("at=1,2,3,4,5")).atoms).toEqual([0, 1, 2, 3]);
+  });
+
+  test("any text whatever gives a state that writes and reads back", () => {
+    fc.assert(
+      fc.property(
+        fc.dictionary(fc.constantFrom("T", "w", "sel", "at", "h", "m", "sort", "sift"), fc.string()),
+        (d) => {
+          const state = readState(new URLSearchParams(d));
+          expect(readState(writeState(state))).toEqual(state);
+        },
+      ),
+      { seed: SEED, numRuns: 500 },
+    );
+  });
+});
+
+describe("writing", () => {
+  test("defaults leave the address clean, and others keep their parameters", () => {
+    expect(searchOf(writeState(defaultState()))).toBe("");
+    expect(searchOf(writeState(defaultState(), new URLSearchParams("T=310&from=mail")))).toBe("?from=mail");
+  });
+
+  test("commas stay readable", () => {
+    expect(searchOf(writeState({ ...defaultState(), selected: [11, 235] }))).toBe("?v=1&sel=11,235");
+  });
+
+  test("what is written is read back", () => {
+    const state = fc.record({
+      sift: fc.option(fc.stringMatching(/^[a-z2-7]{16}$/)),
+      temperatureK: fc.integer({ min: 10000, max: 100000 }).map((centi) => centi / 100),
+      windowKcal: fc.option(fc.integer({ min: 1, max: 100000 }).map((centi) => centi / 100)),
+      selected: fc.option(fc.uniqueArray(fc.integer({ min: 1, max: 50000 }), { maxLength: MAX_SELECTED })),
+      atoms: fc.uniqueArray(fc.integer({ min: 0, max: 999 }), { maxLength: 4 }),
+      hydrogens: fc.constantFrom("none", "polar", "all"),
+      mode: fc.constantFrom("overlay", "side", "one"),
+      weights: fc.constantFrom("auto", "copies", "degeneracy"),
+      sort: fc.option(
+        fc.record({ column: fc.constantFrom("energy", "population", "rmsd"), descending: fc.boolean() }),
+      ),
+    });
+    fc.assert(
+      fc.property(state, (s) => {
+        expect(readState(new URLSearchParams(searchOf(writeState(s as WorkbenchState))))).toEqual(s);
+      }),
+      { seed: SEED, numRuns: 500 },
+    );
+  });
+});

@@ -1,0 +1,150 @@
+import { STANDARD_TEMPERATURE_K } from "./units.ts";
+
+/**
+ * What is selected in the workbench, as it stands in the address: a link shows what its sender saw, and "back" undoes.
+ * Absent means the default, so that short addresses stay short; what cannot be read is taken as absent, never as an error.
+ */
+export interface WorkbenchState {
+  /** Id of the sift shown; null is the newest one. */
+  sift: string | null;
+  temperatureK: number;
+  /** kcal/mol above the lowest; null is none. */
+  windowKcal: number | null;
+  /** Frame numbers in the order chosen; null is "not chosen", which the page reads as the lowest conformer. */
+  selected: number[] | null;
+  /** Picked atoms, counted from 0 here and from 1 in the address; up to four, each once. */
+  atoms: number[];
+  hydrogens: HydrogenMode;
+  mode: ViewMode;
+  weights: WeightsChoice;
+  sort: SortState | null;
+}
+
+export type HydrogenMode = "none" | "polar" | "all";
+export type ViewMode = "overlay" | "side" | "one";
+export type WeightsChoice = "auto" | "copies" | "degeneracy";
+
+/** Column of the conformer table that orders it. */
+export interface SortState {
+  column: string;
+  descending: boolean;
+}
+
+export const DEFAULT_WINDOW_KCAL = 3;
+export const TEMPERATURE_RANGE_K = [100, 1000] as const;
+/** Longer selections would make addresses that mail programs break. */
+export const MAX_SELECTED = 50;
+export const MAX_PICKED = 4;
+const MAX_WINDOW_KCAL = 1000;
+const VERSION = "1";
+
+const ID = /^[a-z2-7]{16}$/;
+const NUMBER = /^\d{1,9}(\.\d{1,9})?$/;
+const SORT = /^([a-z][a-z-]{0,30})\.(up|down)$/;
+/** Names of the state in the address. Other parameters belong to somebody else and are kept. */
+const KEYS = ["v", "sift", "T", "w", "sel", "at", "h", "m", "weights", "sort"] as const;
+
+export function defaultState(): WorkbenchState {
+  return {
+    sift: null,
+    temperatureK: STANDARD_TEMPERATURE_K,
+    windowKcal: DEFAULT_WINDOW_KCAL,
+    selected: null,
+    atoms: [],
+    hydrogens: "polar",
+    mode: "overlay",
+    weights: "auto",
+    sort: null,
+  };
+}
+
+/**
+ * Reads the state from the parameters of an address.
+ *
+ * @returns every field, each at its default where the address says nothing or nonsense
+ * @example readState(new URLSearchParams("T=310&sel=11,235")).temperatureK // 310
+ */
+export function readState(params: URLSearchParams): WorkbenchState {
+  const start = defaultState();
+  const sort = SORT.exec(params.get("sort") ?? "");
+  return {
+    sift: ID.test(params.get("sift") ?? "") ? params.get("sift") : null,
+    temperatureK:
+      readNumber(params.get("T"), TEMPERATURE_RANGE_K[0], TEMPERATURE_RANGE_K[1]) ?? start.temperatureK,
+    windowKcal:
+      params.get("w") === "none"
+        ? null
+        : (readNumber(params.get("w"), 1e-6, MAX_WINDOW_KCAL) ?? start.windowKcal),
+    selected: params.has("sel") ? readCounts(params.get("sel"), MAX_SELECTED) : null,
+    atoms: readCounts(params.get("at"), MAX_PICKED).map((atom) => atom - 1),
+    hydrogens: oneOf(params.get("h"), ["none", "polar", "all"], start.hydrogens),
+    mode: oneOf(params.get("m"), ["overlay", "side", "one"], start.mode),
+    weights: oneOf(params.get("weights"), ["auto", "copies", "degeneracy"], start.weights),
+    sort: sort === null ? null : { column: sort[1]!, descending: sort[2] === "down" },
+  };
+}
+
+/**
+ * Writes a state into the parameters of an address; parameters of others are kept as they are.
+ *
+ * @returns new parameters; defaults are left out, and `v` stands only where something else does
+ * @example writeState({ ...defaultState(), temperatureK: 310 }).toString() // "v=1&T=310"
+ */
+export function writeState(state: WorkbenchState, others?: URLSearchParams): URLSearchParams {
+  const start = defaultState();
+  const pairs: [string, string][] = [];
+  if (state.sift !== null) pairs.push(["sift", state.sift]);
+  if (state.temperatureK !== start.temperatureK) pairs.push(["T", writeNumber(state.temperatureK)]);
+  if (state.windowKcal !== start.windowKcal)
+    pairs.push(["w", state.windowKcal === null ? "none" : writeNumber(state.windowKcal)]);
+  if (state.selected !== null) pairs.push(["sel", state.selected.slice(0, MAX_SELECTED).join(",")]);
+  if (state.atoms.length > 0)
+    pairs.push([
+      "at",
+      state.atoms
+        .slice(0, MAX_PICKED)
+        .map((atom) => atom + 1)
+        .join(","),
+    ]);
+  if (state.hydrogens !== start.hydrogens) pairs.push(["h", state.hydrogens]);
+  if (state.mode !== start.mode) pairs.push(["m", state.mode]);
+  if (state.weights !== start.weights) pairs.push(["weights", state.weights]);
+  if (state.sort !== null)
+    pairs.push(["sort", `${state.sort.column}.${state.sort.descending ? "down" : "up"}`]);
+  const params = new URLSearchParams(pairs.length > 0 ? [["v", VERSION], ...pairs] : []);
+  for (const [key, value] of others ?? []) {
+    if (!(KEYS as readonly string[]).includes(key)) params.append(key, value);
+  }
+  return params;
+}
+
+/** The query of an address, with its question mark, or an empty string; commas stay readable. */
+export function searchOf(params: URLSearchParams): string {
+  const text = params.toString().replaceAll("%2C", ",");
+  return text === "" ? "" : `?${text}`;
+}
+
+function readNumber(text: string | null, least: number, most: number): number | null {
+  if (text === null || !NUMBER.test(text)) return null;
+  const value = Number(text);
+  return value >= least && value <= most ? value : null;
+}
+
+/** Shortest decimal text that reads back to the same value within the nine places that are read. */
+function writeNumber(value: number): string {
+  return String(Number(value.toFixed(9)));
+}
+
+/** Counting numbers, each once, in order; what is none is passed over. */
+function readCounts(text: string | null, most: number): number[] {
+  const found = new Set<number>();
+  for (const part of (text ?? "").split(",")) {
+    if (found.size === most) break;
+    if (/^[1-9]\d{0,7}$/.test(part)) found.add(Number(part));
+  }
+  return [...found];
+}
+
+function oneOf<T extends string>(text: string | null, choices: readonly T[], fallback: T): T {
+  return choices.find((choice) => choice === text) ?? fallback;
+}
