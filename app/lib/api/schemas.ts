@@ -1,0 +1,352 @@
+import { z } from "zod";
+import { siftRecipeSchema } from "../recipe/recipe.ts";
+import { STANDARD_TEMPERATURE_K } from "../units.ts";
+
+/**
+ * Every request and answer of the API as one set of schemas: they validate, and openapi.json is made from them.
+ * Energies are kcal/mol (but for `energyUnit` and a level's own `unit`), lengths Å, temperatures K; frames count from 1.
+ */
+
+const id = z.string().regex(/^[a-z2-7]{16}$/);
+const frameNumber = z.number().int().positive();
+
+/** A number in an address or a form field, the whole text and nothing else. */
+const NUMBER_TEXT = /^[+-]?(\d+(\.\d*)?|\.\d+)([eE][+-]?\d+)?$/;
+
+function numberText(lowest: number, highest: number, words: string) {
+  return z
+    .string()
+    .refine((text) => NUMBER_TEXT.test(text) && Number(text) >= lowest && Number(text) <= highest, words)
+    .transform(Number);
+}
+
+/** An option of an address: left out or left empty both mean the default. */
+function optional<Schema extends z.ZodType>(schema: Schema) {
+  return z
+    .literal("")
+    .transform(() => undefined)
+    .or(schema)
+    .optional();
+}
+
+// --- what goes wrong ---------------------------------------------------------------------------
+
+export const problemSchema = z
+  .object({
+    type: z.string(),
+    title: z.string(),
+    status: z.number().int(),
+    detail: z.string().optional(),
+    errors: z
+      .array(
+        z.object({
+          field: z.string().optional(),
+          file: z.string().optional(),
+          frame: z.number().int().optional(),
+          line: z.number().int().optional(),
+          message: z.string(),
+        }),
+      )
+      .optional(),
+    existing: id
+      .optional()
+      .meta({ description: "409 of an upload: the ensemble that these bytes already made." }),
+    url: z.string().optional().meta({ description: "409 of an upload: its address." }),
+  })
+  .meta({ id: "Problem", description: "RFC 9457, application/problem+json" });
+
+// --- ensembles ---------------------------------------------------------------------------------
+
+export const ENERGY_KINDS = ["electronic", "zero-point", "enthalpy", "free"] as const;
+/** Units that a request may state. */
+export const REQUEST_UNITS = ["hartree", "kcal/mol", "kJ/mol", "eV"] as const;
+
+/** Fields of an upload beside its files. Unknown ones are refused. */
+export const uploadFieldsSchema = z
+  .strictObject({
+    name: z
+      .string()
+      .trim()
+      .min(1)
+      .max(200)
+      .optional()
+      .meta({ description: "Default: the first file's name." }),
+    series: z
+      .string()
+      .trim()
+      .min(1)
+      .max(120)
+      .optional()
+      .meta({ description: 'Name of the series, made if new. Default: "Unsorted".' }),
+    level: z
+      .string()
+      .trim()
+      .min(1)
+      .max(120)
+      .optional()
+      .meta({ description: "Name of the level of theory of the energies in the files." }),
+    energyUnit: z
+      .enum(REQUEST_UNITS)
+      .optional()
+      .meta({ description: "Unit of these energies; without it the unit must stand beside the number." }),
+    energyFrom: z
+      .string()
+      .regex(/^(key:.+|field:.+|number:[1-9]\d*)$/s, 'Write "key:NAME" or "number:N".')
+      .max(200)
+      .optional()
+      .meta({
+        description:
+          "Which number is the energy: key:NAME (the run of characters before = or :, exact in case) or number:N (every number of the comment line counts, from 1).",
+      }),
+    energyKind: z.enum(ENERGY_KINDS).optional().meta({ description: "Default: electronic." }),
+    energyTemperature: numberText(0.001, 100_000, "A temperature in K, such as 298.15.")
+      .optional()
+      .meta({ description: "K; for energies that belong to one temperature." }),
+  })
+  .meta({ id: "UploadFields" });
+export type UploadFields = z.infer<typeof uploadFieldsSchema>;
+
+export const intakeMessageSchema = z
+  .object({
+    code: z.string(),
+    severity: z.enum(["remark", "hold", "question", "reject"]),
+    file: z.string(),
+    line: z.number().int().positive().optional(),
+    column: z.number().int().positive().optional(),
+    frame: frameNumber.optional(),
+    atom: z.number().int().positive().optional(),
+    found: z.string().optional(),
+    message: z.string(),
+    hint: z.string().optional(),
+  })
+  .meta({ id: "IntakeMessage" });
+
+export const questionSchema = z
+  .object({
+    id: z.string(),
+    code: z.string(),
+    text: z.string(),
+    reason: z.string().optional(),
+    options: z.array(
+      z.object({
+        id: z.string(),
+        text: z.string(),
+        detail: z.string().optional(),
+        values: z.array(z.string().nullable()).optional(),
+        spreadKcal: z.number().nullable().optional(),
+        proposed: z.boolean().optional(),
+      }),
+    ),
+  })
+  .meta({ id: "Question" });
+
+export const intakeSchema = z
+  .object({
+    frames: z.number().int(),
+    accepted: z.number().int(),
+    remarked: z.number().int().meta({ description: "Those of the accepted that carry a remark." }),
+    held: z.number().int(),
+    messages: z.array(intakeMessageSchema),
+    questions: z.array(questionSchema).meta({ description: "Those still open." }),
+  })
+  .meta({ id: "Intake", description: "frames = accepted + held" });
+
+export const levelSchema = z
+  .object({
+    id,
+    name: z.string(),
+    unit: z.string().meta({ description: "Unit of the source." }),
+    count: z.number().int().meta({ description: "Accepted frames with a value." }),
+    missing: z.number().int().meta({ description: "Accepted frames without a value." }),
+    energyKind: z.enum(ENERGY_KINDS),
+    temperature: z.number().nullable(),
+  })
+  .meta({ id: "Level" });
+
+export const columnSchema = z
+  .object({
+    id,
+    name: z.string(),
+    kind: z.enum(["energy", "property"]),
+    unit: z.string().nullable(),
+    count: z.number().int(),
+    missing: z.number().int(),
+  })
+  .meta({ id: "Column" });
+
+export const ensembleSchema = z
+  .object({
+    id,
+    url: z.string().meta({ description: "Its page." }),
+    name: z.string(),
+    series: z.object({ id, name: z.string() }),
+    formula: z.string().meta({ description: "Hill order." }),
+    atoms: z.number().int(),
+    chirality: z.enum(["achiral", "chiral", "unsure"]),
+    intake: intakeSchema,
+    levels: z.array(levelSchema),
+    columns: z.array(columnSchema),
+    files: z.array(
+      z.object({ name: z.string(), sha256: z.string(), bytes: z.number().int(), frames: z.number().int() }),
+    ),
+    createdAt: z.string(),
+  })
+  .meta({ id: "Ensemble" });
+export type EnsembleAnswer = z.infer<typeof ensembleSchema>;
+
+export const ensembleListSchema = z
+  .object({
+    ensembles: z.array(
+      ensembleSchema.omit({ columns: true, files: true, intake: true, chirality: true }).extend({
+        intake: intakeSchema.omit({ messages: true, questions: true }).extend({
+          openQuestions: z.number().int(),
+        }),
+      }),
+    ),
+    page: z.number().int().positive(),
+    pages: z.number().int(),
+    total: z.number().int(),
+  })
+  .meta({ id: "EnsembleList" });
+export type EnsembleListAnswer = z.infer<typeof ensembleListSchema>;
+
+export const ensembleListQuerySchema = z.object({
+  series: optional(z.string().max(120)).meta({ description: "Name or id of a series." }),
+  page: optional(
+    z
+      .string()
+      .regex(/^[1-9]\d{0,5}$/, "A page number from 1.")
+      .transform(Number),
+  ).meta({ description: "From 1; 50 ensembles a page." }),
+});
+
+export const answersRequestSchema = z
+  .strictObject({
+    answers: z
+      .array(z.strictObject({ id: z.string().min(1).max(40), option: z.string().min(1).max(200) }))
+      .min(1)
+      .max(20),
+  })
+  .meta({ id: "AnswersRequest" });
+export type AnswersRequest = z.infer<typeof answersRequestSchema>;
+
+export const rereadRequestSchema = z
+  .strictObject({
+    level: z.string().trim().min(1).max(120).optional(),
+    energyUnit: z.enum(REQUEST_UNITS).optional(),
+    energyFrom: uploadFieldsSchema.shape.energyFrom,
+    energyKind: z.enum(ENERGY_KINDS).optional(),
+    energyTemperature: z.number().min(0.001).max(100_000).optional(),
+  })
+  .meta({ id: "RereadRequest", description: "The new answers; what is left out is open again." });
+
+export const decisionRequestSchema = z
+  .strictObject({ reason: z.string().trim().min(1, "Give the reason.").max(500) })
+  .meta({ id: "DecisionRequest" });
+
+export const decisionAnswerSchema = z
+  .object({
+    frame: frameNumber,
+    state: z.enum(["accepted", "remarked", "held"]),
+    intake: intakeSchema,
+  })
+  .meta({ id: "DecisionAnswer" });
+
+// --- sifts -------------------------------------------------------------------------------------
+
+export const siftStatusSchema = z.enum(["queued", "running", "done", "failed", "cancelled"]);
+
+export const siftAcceptedSchema = z
+  .object({ id, status: siftStatusSchema, progress: z.number().min(0).max(1) })
+  .meta({ id: "SiftAccepted" });
+
+export const siftResultSchema = z
+  .object({
+    kept: z.array(
+      z.object({
+        frame: frameNumber,
+        relativeEnergy: z.number().nullable(),
+        degeneracy: z.number().int(),
+        symmetryNumber: z.number().int().nullable(),
+        copies: z.number().nullable(),
+        mirrorRmsd: z.number(),
+        found: z.number().int(),
+        upperBound: z.boolean().optional(),
+      }),
+    ),
+    dropped: z.array(
+      z.object({
+        frame: frameNumber,
+        repeats: frameNumber,
+        rmsd: z.number(),
+        energyDifference: z.number().nullable(),
+        mirror: z.boolean().optional(),
+        upperBound: z.boolean().optional(),
+      }),
+    ),
+    held: z.array(z.object({ frame: frameNumber, reason: z.string() })),
+    outsideWindow: z.array(frameNumber),
+    withoutEnergy: z.array(frameNumber),
+    pairsExamined: z.number(),
+    seconds: z.number(),
+  })
+  .meta({ id: "SiftResult" });
+
+export const siftSchema = z
+  .object({
+    id,
+    status: siftStatusSchema,
+    progress: z.number().min(0).max(1),
+    ensemble: id,
+    recipe: siftRecipeSchema,
+    result: siftResultSchema.nullable(),
+    error: z.string().nullable(),
+    current: z.boolean().meta({ description: "False where frames or energies changed since." }),
+  })
+  .meta({ id: "Sift" });
+
+export const siftQuerySchema = z.object({
+  wait: optional(numberText(0, 60, "Seconds from 0 to 60.")).meta({
+    description: "Seconds to hold the answer until the sift has ended, 0 to 60.",
+  }),
+});
+
+const temperature = optional(
+  numberText(0.001, 100_000, "A temperature in K above zero, such as 298.15."),
+).meta({
+  description: `K; default ${STANDARD_TEMPERATURE_K}.`,
+});
+const weights = optional(z.enum(["auto", "copies", "degeneracy"])).meta({ description: "Default: auto." });
+
+export const populationsQuerySchema = z.object({
+  temperature,
+  level: optional(z.string().max(200)).meta({ description: "Id or name; default: the level of the sift." }),
+  weights,
+});
+
+export const exportQuerySchema = z.object({ temperature });
+
+export const populationsSchema = z
+  .object({
+    temperature: z.number(),
+    level: id,
+    levelName: z.string(),
+    weights: z.enum(["copies", "degeneracy"]),
+    weightsReason: z.string(),
+    conformers: z.array(
+      z.object({
+        frame: frameNumber,
+        relativeEnergy: z.number(),
+        weight: z.number(),
+        population: z.number(),
+      }),
+    ),
+    withoutEnergy: z.array(frameNumber).meta({ description: "Kept frames without an energy at this level." }),
+    freeEnergy: z.number().meta({ description: "Relative to the lowest conformer, kcal/mol." }),
+    energy: z.number().meta({ description: "Mean, relative to the lowest conformer, kcal/mol." }),
+    entropy: z.number().meta({ description: "cal/(mol K)" }),
+    heatCapacity: z.number().meta({ description: "cal/(mol K)" }),
+    effectiveCount: z.number().meta({ description: "exp(entropy/R), microstates." }),
+  })
+  .meta({ id: "Populations" });
+export type PopulationsAnswer = z.infer<typeof populationsSchema>;

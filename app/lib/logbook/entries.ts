@@ -1,0 +1,199 @@
+import { z } from "zod";
+
+/**
+ * What the logbook can hold: a closed union, so that every old row still parses and has a sentence.
+ * Add kinds and optional members; never rename or narrow one that was written.
+ */
+
+const answers = z.object({
+  energyUnit: z.string().nullable(),
+  energyFrom: z.string().nullable(),
+  level: z.string().nullable(),
+});
+const counts = { frames: z.number(), accepted: z.number(), remarked: z.number(), held: z.number() };
+
+export const logbookEntrySchema = z.discriminatedUnion("type", [
+  z.object({ type: z.literal("sign-up"), data: z.object({}) }),
+  z.object({ type: z.literal("sign-in"), data: z.object({}) }),
+  z.object({ type: z.literal("sign-in-failed"), data: z.object({ email: z.string().optional() }) }),
+  z.object({ type: z.literal("sign-out"), data: z.object({}) }),
+  z.object({ type: z.literal("password-reset-asked"), data: z.object({}) }),
+  z.object({ type: z.literal("password-changed"), data: z.object({}) }),
+  z.object({ type: z.literal("team-made"), data: z.object({ name: z.string() }) }),
+  z.object({
+    type: z.literal("token-made"),
+    data: z.object({
+      prefix: z.string(),
+      name: z.string(),
+      scope: z.string(),
+      endsAt: z.string().nullable(),
+    }),
+  }),
+  z.object({ type: z.literal("token-revoked"), data: z.object({ prefix: z.string(), name: z.string() }) }),
+  z.object({ type: z.literal("series-made"), data: z.object({ name: z.string() }) }),
+  z.object({
+    type: z.literal("intake"),
+    data: z.object({
+      name: z.string(),
+      files: z.array(z.object({ name: z.string(), sha256: z.string(), bytes: z.number() })),
+      answers,
+      questions: z.number(),
+      ...counts,
+    }),
+  }),
+  z.object({
+    type: z.literal("reread"),
+    data: z.object({ before: answers, after: answers, questions: z.number(), ...counts }),
+  }),
+  z.object({
+    type: z.literal("answer"),
+    data: z.object({
+      question: z.string(),
+      text: z.string(),
+      option: z.string(),
+      optionText: z.string(),
+      released: z.number(),
+    }),
+  }),
+  z.object({ type: z.literal("hold"), data: z.object({ frame: z.number(), reason: z.string() }) }),
+  z.object({
+    type: z.literal("release"),
+    data: z.object({ frame: z.number(), reason: z.string(), heldFor: z.string() }),
+  }),
+  z.object({
+    type: z.literal("release-refused"),
+    data: z.object({ frame: z.number(), reason: z.string(), why: z.string() }),
+  }),
+  z.object({
+    type: z.literal("sift"),
+    data: z.object({ siftId: z.string(), automatic: z.boolean(), recipe: z.unknown() }),
+  }),
+  z.object({ type: z.literal("sift-cancelled"), data: z.object({ siftId: z.string() }) }),
+  z.object({ type: z.literal("export"), data: z.object({ siftId: z.string(), format: z.string() }) }),
+  z.object({
+    type: z.literal("source-downloaded"),
+    data: z.object({ file: z.string() }),
+  }),
+  z.object({ type: z.literal("renamed"), data: z.object({ before: z.string(), after: z.string() }) }),
+  z.object({
+    type: z.literal("moved"),
+    data: z.object({ before: z.string(), after: z.string() }),
+  }),
+  z.object({ type: z.literal("deleted"), data: z.object({ name: z.string() }) }),
+]);
+
+export type LogbookEntry = z.infer<typeof logbookEntrySchema>;
+export type LogbookType = LogbookEntry["type"];
+
+const plural = (n: number, one: string, many = `${one}s`) =>
+  `${n.toLocaleString("en-US")} ${n === 1 ? one : many}`;
+
+const NONE = "open";
+
+function answerWords(a: z.infer<typeof answers>): string {
+  return `level ${a.level ?? NONE}, unit ${a.energyUnit ?? NONE}, energy from ${a.energyFrom ?? NONE}`;
+}
+
+function countWords(d: { frames: number; accepted: number; remarked: number; held: number }): string {
+  const remarked = d.remarked > 0 ? `, ${d.remarked.toLocaleString("en-US")} of them with a remark` : "";
+  return `${plural(d.frames, "frame")}: ${d.accepted.toLocaleString("en-US")} accepted${remarked}, ${d.held.toLocaleString("en-US")} held`;
+}
+
+/**
+ * One sentence on an entry, and a second line where there is more to say.
+ *
+ * @example describeEntry({ type: "hold", data: { frame: 4, reason: "no minimum" } }).text // "Held frame 4"
+ */
+export function describeEntry(entry: LogbookEntry): { text: string; detail: string | null } {
+  switch (entry.type) {
+    case "sign-up":
+      return { text: "Signed up", detail: null };
+    case "sign-in":
+      return { text: "Signed in", detail: null };
+    case "sign-in-failed":
+      return { text: "A sign-in was refused", detail: null };
+    case "sign-out":
+      return { text: "Signed out", detail: null };
+    case "password-reset-asked":
+      return { text: "Asked for a password reset", detail: null };
+    case "password-changed":
+      return { text: "Changed the password", detail: null };
+    case "team-made":
+      return { text: `Made the team ${entry.data.name}`, detail: null };
+    case "token-made": {
+      const end = entry.data.endsAt === null ? "no end date" : `ends ${entry.data.endsAt.slice(0, 10)}`;
+      return {
+        text: `Made token ${entry.data.prefix}…`,
+        detail: `${entry.data.name}; ${entry.data.scope}; ${end}`,
+      };
+    }
+    case "token-revoked":
+      return { text: `Revoked token ${entry.data.prefix}…`, detail: entry.data.name };
+    case "series-made":
+      return { text: `Made the series ${entry.data.name}`, detail: null };
+    case "intake": {
+      const names = entry.data.files.map((file) => file.name).join(", ");
+      const open = entry.data.questions > 0 ? `; ${plural(entry.data.questions, "question")} open` : "";
+      return { text: `Read ${names}`, detail: countWords(entry.data) + open };
+    }
+    case "reread":
+      return {
+        text: `Read the files again with other answers: ${answerWords(entry.data.after)}`,
+        detail: `before: ${answerWords(entry.data.before)}; ${countWords(entry.data)}`,
+      };
+    case "answer":
+      return {
+        text: `Answered: ${entry.data.optionText}`,
+        detail: `${entry.data.text}${entry.data.released > 0 ? ` ${plural(entry.data.released, "frame")} released.` : ""}`,
+      };
+    case "hold":
+      return { text: `Held frame ${entry.data.frame}`, detail: entry.data.reason };
+    case "release":
+      return { text: `Released frame ${entry.data.frame}`, detail: entry.data.reason };
+    case "release-refused":
+      return { text: `Asked to release frame ${entry.data.frame}; refused`, detail: entry.data.why };
+    case "sift":
+      return {
+        text: entry.data.automatic ? "Sift begun after intake" : "Asked for a sift",
+        detail: recipeWords(entry.data.recipe),
+      };
+    case "sift-cancelled":
+      return { text: "Cancelled a sift", detail: null };
+    case "export":
+      return { text: `Took the distinct set as ${entry.data.format.toUpperCase()}`, detail: null };
+    case "source-downloaded":
+      return { text: `Downloaded the source file ${entry.data.file}`, detail: null };
+    case "renamed":
+      return { text: `Renamed to ${entry.data.after}`, detail: `before: ${entry.data.before}` };
+    case "moved":
+      return { text: `Moved to the series ${entry.data.after}`, detail: `before: ${entry.data.before}` };
+    case "deleted":
+      return { text: `Deleted ${entry.data.name}`, detail: null };
+  }
+}
+
+const recipeShape = z.object({
+  levelName: z.string().nullable(),
+  window: z.number().nullable(),
+  energyTolerance: z.number().nullable(),
+  rmsdTolerance: z.number(),
+  atoms: z.string(),
+  mirror: z.string(),
+});
+
+/** The recipe in one line; what an older version wrote in another shape is left out, not guessed. */
+function recipeWords(recipe: unknown): string | null {
+  const read = recipeShape.safeParse(recipe);
+  if (!read.success) return null;
+  const r = read.data;
+  const parts = [
+    r.levelName === null ? "without energies" : `level ${r.levelName}`,
+    `RMSD ${r.rmsdTolerance} Å`,
+    r.energyTolerance === null ? "no energy tolerance" : `energy ${r.energyTolerance} kcal/mol`,
+    r.window === null ? "no window" : `window ${r.window} kcal/mol`,
+    { heavy: "heavy atoms", "heavy+polarH": "heavy atoms and polar hydrogens", all: "all atoms" }[r.atoms] ??
+      r.atoms,
+    r.mirror === "merge" ? "mirror images merged" : "mirror images kept apart",
+  ];
+  return parts.join(", ");
+}
