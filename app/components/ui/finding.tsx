@@ -1,0 +1,35 @@
+import type { ReactNode } from "react";
+
+/** Title of a section with what stands at its right ("How this is computed"). */
+export function SectionHead({ title, aside, id }: { title: ReactNode; aside?: ReactNode; id?: string }) {
+  return (
+    <div className="flex flex-wrap items-baseline justify-between gap-x-4 gap-y-1">
+      <h2 id={id} className="text-lg font-semibold tracking-title sm:text-xl">
+        {title}
+      </h2>
+      {aside ? <span className="text-xs">{aside}</span> : null}
+    </div>
+  );
+}
+
+/** The one or two sentences a section opens with: computed, in plain words. `more` says the rest in small. */
+export function Finding({ children, more, wide }: { children: ReactNode; more?: ReactNode; wide?: boolean }) {
+  return (
+    <div className={`figures mt-2 ${wide ? "max-w-[60rem]" : "max-w-[46rem]"}`}>
+      <p className="text-base text-pretty sm:text-lg">{children}</p>
+      {more ? <p className="mt-1 text-ink-2">{more}</p> : null}
+    </div>
+  );
+}
+
+/** Title of a block inside a section, with its buttons. */
+export function BlockHead({ title, children, id }: { title: ReactNode; children?: ReactNode; id?: string }) {
+  return (
+    <div className="mb-2 flex flex-wrap items-center justify-between gap-3">
+      <h3 id={id} className="text-sm font-semibold">
+        {title}
+      </h3>
+      {children ? <div className="flex flex-wrap gap-2">{children}</div> : null}
+    </div>
+  );
+}
