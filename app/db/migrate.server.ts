@@ -1,0 +1,131 @@
+import { existsSync, readFileSync } from "node:fs";
+import path from "node:path";
+import { drizzle } from "drizzle-orm/mysql2";
+import { migrate } from "drizzle-orm/mysql2/migrator";
+import type { PoolConnection, RowDataPacket } from "mysql2/promise";
+import { env } from "../env.server.ts";
+import { pool } from "./client.server.ts";
+
+/** The server keeps data in a way that the application does not accept; says what to set. */
+export class DatabaseSettingsError extends Error {
+  override name = "DatabaseSettingsError";
+}
+
+interface Settings {
+  flush: number | string;
+  doublewrite: number | string;
+  mode: string;
+  charset: string;
+  collation: string;
+  packet: number | string;
+  version: string;
+}
+
+const isOn = (value: number | string) => Number(value) === 1 || value === "ON";
+
+/**
+ * What is wrong with a server's settings for data that must survive a power cut; empty when nothing is.
+ *
+ * @example settingsFaults({ ...good, flush: 2 }) // ["innodb_flush_log_at_trx_commit is 2, it must be 1"]
+ */
+export function settingsFaults(found: Settings, durability: "full" | "relaxed"): string[] {
+  const faults: string[] = [];
+  if (durability === "full") {
+    if (Number(found.flush) !== 1) {
+      faults.push(`innodb_flush_log_at_trx_commit is ${found.flush}, it must be 1`);
+    }
+    if (!isOn(found.doublewrite)) faults.push(`innodb_doublewrite is ${found.doublewrite}, it must be on`);
+  }
+  if (!/STRICT_(TRANS|ALL)_TABLES/.test(found.mode)) {
+    faults.push(`sql_mode is "${found.mode}", it must hold STRICT_TRANS_TABLES`);
+  }
+  if (found.charset !== "utf8mb4") {
+    faults.push(`the database's character set is ${found.charset}, it must be utf8mb4`);
+  }
+  if (Number(found.packet) < 8 * 2 ** 20) {
+    faults.push(`max_allowed_packet is ${found.packet}, it must be at least 8388608 (8 MiB)`);
+  }
+  return faults;
+}
+
+async function readSettings(connection: PoolConnection): Promise<Settings> {
+  const [rows] = await connection.query<(RowDataPacket & Settings)[]>(
+    `select @@global.innodb_flush_log_at_trx_commit as flush, @@global.innodb_doublewrite as doublewrite,
+      @@global.sql_mode as mode, @@character_set_database as charset, @@collation_database as collation,
+      @@global.max_allowed_packet as packet, version() as version`,
+  );
+  const row = rows[0];
+  if (row === undefined) throw new DatabaseSettingsError("The database server told none of its settings.");
+  return row;
+}
+
+/** Names and texts compare byte for byte; a database made with another collation is set so while it is empty. */
+async function compareByByte(connection: PoolConnection, found: Settings): Promise<void> {
+  if (found.collation === "utf8mb4_bin") return;
+  const [rows] = await connection.query<RowDataPacket[]>(
+    "select 1 from information_schema.tables where table_schema = database() limit 1",
+  );
+  if (rows.length === 0) await connection.query("alter database character set utf8mb4 collate utf8mb4_bin");
+}
+
+async function withLock<Result>(work: (connection: PoolConnection) => Promise<Result>): Promise<Result> {
+  const connection = await pool().getConnection();
+  try {
+    const [rows] = await connection.query<RowDataPacket[]>(
+      "select get_lock(concat(database(), '.migrate'), 60) as held",
+    );
+    if (rows[0]?.held !== 1) {
+      throw new Error("Another process has been changing the database's tables for a minute. Start again.");
+    }
+    try {
+      return await work(connection);
+    } finally {
+      await connection.query("select release_lock(concat(database(), '.migrate'))");
+    }
+  } finally {
+    connection.release();
+  }
+}
+
+/**
+ * Refuses a server with unsafe settings, then brings the tables up to date, one process at a time.
+ *
+ * @throws DatabaseSettingsError that lists every setting at fault
+ */
+export async function migrateDatabase(): Promise<void> {
+  await withLock(async (connection) => {
+    const found = await readSettings(connection);
+    const faults = settingsFaults(found, env().DATABASE_DURABILITY);
+    if (faults.length > 0) {
+      const list = faults.map((fault) => `  ${fault}`).join("\n");
+      throw new DatabaseSettingsError(
+        `This database server (${found.version}) could lose or change data, so nothing was started:\n${list}`,
+      );
+    }
+    await compareByByte(connection, found);
+    await migrate(drizzle(connection, { casing: "snake_case" }), {
+      migrationsFolder: path.resolve(env().MIGRATIONS_DIRECTORY),
+    });
+  });
+}
+
+/** Time stamp of the newest migration this version of the code knows. */
+function newestMigration(): number {
+  const journal = path.resolve(env().MIGRATIONS_DIRECTORY, "meta/_journal.json");
+  if (!existsSync(journal)) return 0;
+  const { entries } = JSON.parse(readFileSync(journal, "utf8")) as { entries: { when: number }[] };
+  return entries.reduce((newest, entry) => Math.max(newest, entry.when), 0);
+}
+
+let expected: number | undefined;
+
+/** True when the tables are as new as the code; throws when the database is away. */
+export async function migrationsAreIn(): Promise<boolean> {
+  expected ??= newestMigration();
+  const [tables] = await pool().query<RowDataPacket[]>("show tables like '\\_\\_drizzle\\_migrations'");
+  if (tables.length === 0) return false;
+  const [rows] = await pool().query<RowDataPacket[]>(
+    "select max(created_at) as newest from __drizzle_migrations",
+  );
+  return Number(rows[0]?.newest ?? 0) >= expected;
+}

@@ -1,0 +1,197 @@
+import { and, eq, isNull, sql } from "drizzle-orm";
+import { db } from "../../db/client.server.ts";
+import { isId } from "../../db/new-id.server.ts";
+import { ensembles, members, sifts, users } from "../../db/schema.server.ts";
+import type { DomainError } from "../../lib/errors.ts";
+import { forbidden, notFound } from "../http.server.ts";
+
+/** Who calls. */
+export type Actor =
+  | { kind: "anonymous" }
+  | { kind: "user"; userId: string; sessionId: string }
+  | {
+      kind: "token";
+      userId: string;
+      tokenId: string;
+      teamId: string;
+      scope: "full" | "read" | "add";
+    };
+
+/** What an act does to its object. */
+export type Verb =
+  | "read"
+  | "read-source"
+  /** Takes files in, answers what intake asked: the one act of tokens narrowed to adding. */
+  | "take-in"
+  /** Takes in, computes, names, holds, releases. */
+  | "compute"
+  | "remark"
+  | "share"
+  /** People, roles, others' tokens, deletion. */
+  | "manage"
+  /** One's own tokens. */
+  | "tokens";
+
+export type MemberRole = "owner" | "analyst" | "reader";
+
+/** What the caller is, in the team of the object. `onlyOwnOfToken` narrows lists to what that token took in. */
+export interface Grant {
+  teamId: string;
+  role: MemberRole | "guest";
+  userId: string | null;
+  tokenId: string | null;
+  onlyOwnOfToken: string | null;
+}
+
+const ROLE_MAY: Record<Grant["role"], readonly Verb[]> = {
+  owner: ["read", "read-source", "take-in", "compute", "remark", "share", "manage", "tokens"],
+  analyst: ["read", "read-source", "take-in", "compute", "remark", "share", "tokens"],
+  reader: ["read", "read-source", "remark", "tokens"],
+  guest: ["read", "read-source"],
+};
+
+/** A token never acts on people, remarks, editions or links, whatever its user may do. */
+const SCOPE_MAY = {
+  full: ["read", "read-source", "take-in", "compute"],
+  read: ["read", "read-source"],
+  add: ["read", "read-source", "take-in"],
+} as const satisfies Record<string, readonly Verb[]>;
+
+const REFUSALS: Record<Verb, string> = {
+  read: "You may not read this.",
+  "read-source": "You may not download the source files.",
+  "take-in": "Taking files in needs the role of an analyst or owner in this team.",
+  compute:
+    "Taking files in, computing, naming, holding and releasing need the role of an analyst or owner in this team.",
+  remark: "Writing a remark needs a member of the team who is signed in.",
+  share: "Sharing needs the role of an analyst or owner in this team.",
+  manage: "Only an owner of the team may do this.",
+  tokens: "Tokens are made and ended by members of the team who are signed in.",
+};
+
+/** True where role and scope together allow the verb; `role` null is no access at all. */
+export function roleMay(role: Grant["role"], verb: Verb): boolean {
+  return ROLE_MAY[role].includes(verb);
+}
+
+function refusal(actor: Actor, verb: Verb): DomainError {
+  if (actor.kind !== "token" || actor.scope === "full") return forbidden(REFUSALS[verb]);
+  const what = actor.scope === "read" ? "read" : "take files in and see what it took in";
+  return forbidden(`This token may only ${what}. ${REFUSALS[verb]}`);
+}
+
+/** The role the actor has in a team right now; null without one. Roles are looked up on every call. */
+async function roleIn(actor: Actor, teamId: string): Promise<MemberRole | null> {
+  if (actor.kind === "anonymous") return null;
+  if (actor.kind === "token" && actor.teamId !== teamId) return null;
+  const rows = await db
+    .select({ role: members.role })
+    .from(members)
+    .innerJoin(users, eq(users.id, members.userId))
+    .where(and(eq(members.teamId, teamId), eq(members.userId, actor.userId), isNull(users.disabledAt)))
+    .limit(1);
+  return rows[0]?.role ?? null;
+}
+
+function grantOf(actor: Actor, teamId: string, role: Grant["role"]): Grant {
+  const token = actor.kind === "token" ? actor : null;
+  return {
+    teamId,
+    role,
+    userId: actor.kind === "anonymous" ? null : actor.userId,
+    tokenId: token?.tokenId ?? null,
+    onlyOwnOfToken: token?.scope === "add" ? token.tokenId : null,
+  };
+}
+
+function may(actor: Actor, role: Grant["role"], verb: Verb): boolean {
+  if (!roleMay(role, verb)) return false;
+  return actor.kind !== "token" || (SCOPE_MAY[actor.scope] as readonly Verb[]).includes(verb);
+}
+
+/**
+ * Decides on an act in a team. The one place, with its two companions below, that decides access; every service
+ * calls one of the three and binds its queries to the team of the grant.
+ *
+ * A token narrowed to adding passes "compute" here, since in a team that means a new ensemble; it does not pass
+ * it on an ensemble.
+ *
+ * @throws DomainError not-found without any access (foreign and missing look alike), forbidden for a member who
+ *   may not do it
+ */
+export async function accessTeam(actor: Actor, verb: Verb, teamId: string): Promise<Grant> {
+  const role = isId(teamId) ? await roleIn(actor, teamId) : null;
+  if (role === null) throw notFound();
+  const asked = actor.kind === "token" && actor.scope === "add" && verb === "compute" ? "take-in" : verb;
+  if (!may(actor, role, asked)) throw refusal(actor, verb);
+  return grantOf(actor, teamId, role);
+}
+
+interface Found {
+  ensembleId: string;
+  teamId: string;
+  example: boolean;
+  createdByToken: string | null;
+  role: MemberRole | null;
+}
+
+const foundFields = (actor: Actor) => ({
+  ensembleId: ensembles.id,
+  teamId: ensembles.teamId,
+  example: ensembles.example,
+  createdByToken: ensembles.createdByToken,
+  role: actor.kind === "anonymous" ? sql<null>`null` : members.role,
+});
+
+/** Membership of the actor, and none once its account is disabled. */
+const membership = (actor: Exclude<Actor, { kind: "anonymous" }>) =>
+  and(
+    eq(members.teamId, ensembles.teamId),
+    eq(members.userId, actor.userId),
+    sql`exists (select 1 from ${users} where ${users.id} = ${members.userId} and ${users.disabledAt} is null)`,
+  );
+
+function decide(actor: Actor, verb: Verb, found: Found | undefined): Grant & { ensembleId: string } {
+  if (found === undefined) throw notFound();
+  const foreignToToken =
+    actor.kind === "token" &&
+    (actor.teamId !== found.teamId || (actor.scope === "add" && found.createdByToken !== actor.tokenId));
+  if (foreignToToken) throw notFound();
+  const role = found.role ?? (found.example ? "guest" : null);
+  if (role === null) throw notFound();
+  if (!may(actor, role, verb)) throw refusal(actor, verb);
+  return { ...grantOf(actor, found.teamId, role), ensembleId: found.ensembleId };
+}
+
+async function findEnsemble(actor: Actor, ensembleId: string): Promise<Found | undefined> {
+  const living = and(eq(ensembles.id, ensembleId), isNull(ensembles.deletedAt));
+  const query = db.select(foundFields(actor)).from(ensembles).$dynamic();
+  const joined = actor.kind === "anonymous" ? query : query.leftJoin(members, membership(actor));
+  return (await joined.where(living).limit(1))[0];
+}
+
+/** Decides on an act on an ensemble; an example may be read by anybody, as a guest. Throws as `accessTeam`. */
+export async function accessEnsemble(
+  actor: Actor,
+  verb: Verb,
+  ensembleId: string,
+): Promise<Grant & { ensembleId: string }> {
+  return decide(actor, verb, isId(ensembleId) ? await findEnsemble(actor, ensembleId) : undefined);
+}
+
+/** Decides on an act on a sift by the ensemble it belongs to. Throws as `accessTeam`. */
+export async function accessSift(
+  actor: Actor,
+  verb: Verb,
+  siftId: string,
+): Promise<Grant & { ensembleId: string; siftId: string }> {
+  if (!isId(siftId)) throw notFound();
+  const rows = await db
+    .select({ ensembleId: sifts.ensembleId })
+    .from(sifts)
+    .where(eq(sifts.id, siftId))
+    .limit(1);
+  const ensembleId = rows[0]?.ensembleId;
+  if (ensembleId === undefined) throw notFound();
+  return { ...(await accessEnsemble(actor, verb, ensembleId)), siftId };
+}
