@@ -162,6 +162,7 @@ export const sources = mysqlTable(
     sha256: sha256Column(),
     bytes: bigint({ mode: "number" }).notNull(),
     chunks: int().notNull(),
+    /** While in flight moved on with every chunk, then the time of arrival. */
     createdAt: timeColumn().notNull(),
   },
   (t) => [uniqueIndex("sources_sha").on(t.teamId, t.sha256)],
@@ -221,7 +222,10 @@ export const ensembles = mysqlTable(
     version: int().notNull().default(1),
     createdAt: timeColumn().notNull(),
     changedAt: timeColumn().notNull(),
+    /** Set too while the files are still being read, so that no reader sees a half ensemble. */
     deletedAt: timeColumn(),
+    /** Last sign of life of the upload that fills this row; null once it stands. What stays behind is swept. */
+    readingSince: timeColumn(),
   },
   (t) => [
     uniqueIndex("ensembles_files").on(t.teamId, t.filesSha),

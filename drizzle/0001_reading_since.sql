@@ -1,0 +1,1 @@
+ALTER TABLE `ensembles` ADD `reading_since` datetime(3);
