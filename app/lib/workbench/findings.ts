@@ -1,0 +1,235 @@
+import {
+  capital,
+  countWord,
+  fixed,
+  formatCount,
+  formatEnergy,
+  formatPercent,
+  formatRmsd,
+  formatSeconds,
+  formatTemperature,
+  plural,
+  pluralWord,
+  withUnit,
+} from "../format.ts";
+import type { SiftRecipe } from "../recipe/recipe.ts";
+import type { SiftResult } from "../recipe/result.ts";
+import { thermalEnergyKcal } from "../units.ts";
+import type { EnsembleView } from "../views.ts";
+import { byPopulation, type ConformerRow, type FrameRole, type Outside } from "./conformers.ts";
+
+/** What a section says first: the finding, and a second line that backs it. Plain text, computed. */
+export interface Finding {
+  text: string;
+  second: string | null;
+}
+
+/** From this share on a shape counts as one that carries the ensemble. */
+const CARRIES = 0.05;
+
+/**
+ * A population in a sentence: whole per cent, finer only below 1 %, and never "100 %" of what is not all.
+ *
+ * @example shareWords(0.69295) // "69 %"; shareWords(0.0051) // "0.51 %"; shareWords(0.997) // "more than 99 %"
+ */
+export function shareWords(fraction: number): string {
+  if (fraction >= 1 - 1e-12) return formatPercent(1);
+  if (fraction >= 0.995) return `more than ${formatPercent(0.99)}`;
+  if (fraction >= 0.01) return formatPercent(fraction);
+  if (fraction >= 0.001) return formatPercent(fraction, 2);
+  if (fraction >= 0.0001) return formatPercent(fraction, 3);
+  return fraction > 0 ? `below ${formatPercent(0.0001, 2)}` : formatPercent(0);
+}
+
+/** Which shapes carry the ensemble at this temperature. */
+export function populationsFinding(rows: readonly ConformerRow[], temperatureK: number): Finding {
+  const at = `at ${withUnit(formatTemperature(temperatureK), "K")}`;
+  const ranked = byPopulation(rows);
+  const first = ranked[0];
+  if (!first) return { text: "There is no conformer to weigh.", second: null };
+  if (first.population === null) {
+    return {
+      text: "These frames carry no energies, so no population can be given.",
+      second: "The distinct set stands in file order. Give a file with energies to weigh its conformers.",
+    };
+  }
+  if (ranked.length === 1) {
+    return { text: `One shape is all there is: ${first.name} holds the whole ensemble ${at}.`, second: null };
+  }
+  const carrying = ranked.filter((row) => (row.population ?? 0) >= CARRIES);
+  const sum = (some: readonly ConformerRow[]) =>
+    some.reduce((total, row) => total + (row.population ?? 0), 0);
+  if (carrying.length === 0) {
+    const some = ranked.slice(0, 10);
+    return {
+      text:
+        `No shape holds ${formatPercent(CARRIES)} of the ensemble ${at}: ` +
+        `the ${countWord(some.length)} most populated share ${shareWords(sum(some))}.`,
+      second: null,
+    };
+  }
+  if (carrying.length === 1) {
+    const next = ranked[1];
+    return {
+      text: `${first.name} alone carries ${shareWords(first.population)} of the ensemble ${at}.`,
+      second: next ? `Next comes ${next.name} with ${shareWords(next.population ?? 0)}.` : null,
+    };
+  }
+  return {
+    text:
+      `${capital(countWord(carrying.length))} shapes carry ${shareWords(sum(carrying))} of the ensemble ${at}, ` +
+      `${first.name} alone ${shareWords(first.population)}.`,
+    second: null,
+  };
+}
+
+/** What lies above the window that the reader set, and what the sift's own window may have cut off. */
+export function windowFinding(
+  rows: readonly ConformerRow[],
+  outside: Outside,
+  windowKcal: number | null,
+  temperatureK: number,
+  recipe: SiftRecipe,
+  framesCut: number,
+): string[] {
+  const lines: string[] = [];
+  if (windowKcal !== null && rows.some((row) => row.relativeEnergy !== null)) {
+    const window = withUnit(formatEnergy(windowKcal), "kcal/mol");
+    lines.push(
+      outside.count === 0
+        ? `Nothing lies above the window of ${window}.`
+        : `${capital(pluralWord(outside.count, "conformer"))} above the window of ${window} ` +
+            `${outside.count === 1 ? "holds" : "hold"} ${shareWords(outside.share)}.`,
+    );
+  }
+  if (recipe.window !== null) {
+    // Methods page, section 7: a copy cut by the window w has at most exp(-w/RT) of the minimum's weight.
+    const bound = Math.exp(-recipe.window / thermalEnergyKcal(temperatureK));
+    lines.push(
+      `The sift left out ${plural(framesCut, "frame")} above ${withUnit(formatEnergy(recipe.window), "kcal/mol")}; ` +
+        `each copy missing there would weigh at most ${shareWords(bound)} of the lowest conformer.`,
+    );
+  }
+  return lines;
+}
+
+/** How many shapes the accepted frames repeat, and what it took to say so. */
+export function distinctFinding(result: SiftResult): Finding {
+  const kept = result.kept.length;
+  const compared = kept + result.dropped.length;
+  const left = leftOut(result);
+  if (compared === 0) {
+    return { text: "No accepted frame takes part in this sift.", second: left };
+  }
+  const text =
+    result.dropped.length === 0
+      ? compared === 1
+        ? "One frame was accepted, so there is one shape."
+        : `All ${formatCount(compared)} frames differ from each other: none repeats another.`
+      : `${plural(compared, "accepted frame")} repeat ${kept === 1 ? "one shape" : plural(kept, "shape")}.`;
+  const explained =
+    result.dropped.length === 0
+      ? ""
+      : `${plural(result.dropped.length, "frame was", "frames were")} left out as ` +
+        `${result.dropped.length === 1 ? "a repeat; it names whom it repeats" : "repeats; each names whom it repeats"}. `;
+  const work = `${plural(result.pairsExamined, "pair")} had to be compared, in ${formatSeconds(result.seconds)}.`;
+  return { text, second: [`${explained}${work}`, left].filter(Boolean).join(" ") };
+}
+
+/** Frames that no comparison saw, counted; null where there are none. */
+function leftOut(result: SiftResult): string | null {
+  const parts: string[] = [];
+  if (result.outsideWindow.length > 0)
+    parts.push(`${plural(result.outsideWindow.length, "frame lies", "frames lie")} above the window`);
+  if (result.withoutEnergy.length > 0)
+    parts.push(`${plural(result.withoutEnergy.length, "frame has", "frames have")} no energy at this level`);
+  if (result.held.length > 0) parts.push(`${plural(result.held.length, "frame is", "frames are")} held`);
+  return parts.length === 0 ? null : `${capital(joinWords(parts))}.`;
+}
+
+/** Kept conformers whose own mirror image lies near the tolerance, where the choice of it decides on the factor 2. */
+export function nearMirror(
+  result: SiftResult,
+  recipe: SiftRecipe,
+): { frame: number; name: string; rmsd: number }[] {
+  if (recipe.mirror !== "merge") return [];
+  const found: { frame: number; name: string; rmsd: number }[] = [];
+  for (const [index, { frame, mirrorRmsd }] of result.kept.entries()) {
+    if (mirrorRmsd > recipe.rmsdTolerance / 2 && mirrorRmsd < 2 * recipe.rmsdTolerance)
+      found.push({ frame, name: `c${index + 1}`, rmsd: mirrorRmsd });
+  }
+  return found;
+}
+
+/** What intake says first. */
+export function intakeFinding(ensemble: EnsembleView): Finding {
+  const { frames, accepted, remarked, held, openQuestions } = ensemble;
+  const remark = remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark,`;
+  const can = openQuestions > 0 ? "can be accepted" : accepted === 1 ? "is accepted" : "are accepted";
+  const read = `${plural(frames, "frame")} read:`;
+  if (openQuestions > 0) {
+    const which =
+      openQuestions === 1
+        ? "One question comes first"
+        : `${capital(countWord(openQuestions))} questions come first`;
+    const until = openQuestions === 1 ? "it is answered" : "they are answered";
+    return {
+      text: `${read} ${formatCount(accepted)} accepted${remark} and ${formatCount(held)} held. ${which}; nothing is computed before ${until}.`,
+      second: null,
+    };
+  }
+  if (held === 0) {
+    const all = frames === 1 ? "it is accepted" : "all are accepted";
+    return {
+      text: `${read} ${all}${remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark`}.`,
+      second: null,
+    };
+  }
+  return {
+    text: `${read} ${formatCount(accepted)} ${can}${remark} and ${formatCount(held)} ${held === 1 ? "is" : "are"} held.`,
+    second: "A held frame is kept, and left out of every computation until somebody releases it.",
+  };
+}
+
+/** The pair of figures between which a tolerance can move without changing anything that was merged. */
+export function farthestMerged(result: SiftResult): { frame: number; repeats: number; rmsd: number } | null {
+  let farthest: { frame: number; repeats: number; rmsd: number } | null = null;
+  for (const { frame, repeats, rmsd } of result.dropped) {
+    if (farthest === null || rmsd > farthest.rmsd) farthest = { frame, repeats, rmsd };
+  }
+  return farthest;
+}
+
+/** What became of one frame, as a sentence. */
+export function frameSentence(frame: number, role: FrameRole | undefined): string {
+  if (!role) return `There is no frame ${formatCount(frame)} in this sift.`;
+  switch (role.kind) {
+    case "kept":
+      return `Frame ${frame} is ${role.name} itself.`;
+    case "repeat": {
+      const rmsd = `${role.upperBound ? "at most " : ""}${withUnit(formatRmsd(role.rmsd), "Å")}`;
+      const energy =
+        role.energyDifference === null
+          ? ""
+          : `, ${withUnit(formatEnergy(role.energyDifference), "kcal/mol")} above it`;
+      return `Frame ${frame} repeats ${role.name} (frame ${role.repeats})${role.mirror ? " as its mirror image" : ""}: RMSD ${rmsd}${energy}.`;
+    }
+    case "held":
+      return `Frame ${frame} is held and takes no part.`;
+    case "outside-window":
+      return `Frame ${frame} lies above the window of this sift and was not compared.`;
+    case "without-energy":
+      return `Frame ${frame} has no energy at this level and was not compared.`;
+  }
+}
+
+/** "a", "a and b", "a, b and c". */
+export function joinWords(parts: readonly string[]): string {
+  if (parts.length <= 1) return parts[0] ?? "";
+  return `${parts.slice(0, -1).join(", ")} and ${parts.at(-1)}`;
+}
+
+/** RT at the temperature, as the charts label it. */
+export function thermalLabel(temperatureK: number): string {
+  return `RT = ${fixed(thermalEnergyKcal(temperatureK), 2)}`;
+}
