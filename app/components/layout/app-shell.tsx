@@ -1,0 +1,127 @@
+import type { ReactNode } from "react";
+import { href, Link, useLocation } from "react-router";
+import { ButtonLink } from "~/components/ui/button";
+import { linkClass } from "~/components/ui/text-link";
+import { Toasts } from "~/components/ui/toast";
+import { CONSTANTS_YEAR } from "~/lib/units";
+import { AccountMenu } from "./account-menu";
+import { Brand } from "./brand";
+import { Breadcrumbs, useCrumbs } from "./breadcrumbs";
+import { useShellData } from "./shell-data";
+
+/** Sides of a page: 32, 24 below 1280, 16 below 640. */
+export const pageClass = "mx-auto w-full max-w-page px-4 sm:px-6 xl:px-8";
+
+/**
+ * Bar, content and foot of every page but the doors.
+ *
+ * @param props.recipe left in the foot: the recipe, or what the page has instead of one
+ * @param props.results true where the page shows computed results: the foot then carries the caution
+ */
+export function AppShell({
+  recipe,
+  results = false,
+  children,
+}: {
+  recipe?: ReactNode;
+  results?: boolean;
+  children: ReactNode;
+}) {
+  return (
+    <div className="flex min-h-dvh flex-col">
+      <a
+        href="#content"
+        className="fixed top-2 left-2 z-50 -translate-y-16 rounded-md bg-action px-4 py-2 text-on-action focus:translate-y-0"
+      >
+        To the content
+      </a>
+      <Bar />
+      <main id="content" tabIndex={-1} className="flex-1 outline-none">
+        {children}
+      </main>
+      <Foot recipe={recipe} results={results} />
+      <Toasts />
+    </div>
+  );
+}
+
+function Bar() {
+  const crumbs = useCrumbs();
+  const { user } = useShellData();
+  const { pathname } = useLocation();
+  return (
+    <header className="border-b border-rule bg-paper print:border-0">
+      <div className="flex h-13 items-center gap-4 px-4 sm:px-6 xl:px-8">
+        <Brand short={crumbs.length > 0} />
+        {crumbs.length > 0 ? <Breadcrumbs crumbs={crumbs} /> : <References pathname={pathname} />}
+        <div className="ml-auto flex items-center gap-3 print:hidden">
+          {user ? (
+            <AccountMenu />
+          ) : (
+            <ButtonLink size="sm" to={href("/login")}>
+              Sign in
+            </ButtonLink>
+          )}
+        </div>
+      </div>
+    </header>
+  );
+}
+
+function References({ pathname }: { pathname: string }) {
+  const pages = [
+    { to: href("/methods"), label: "Methods" },
+    { to: href("/formats"), label: "Formats" },
+  ];
+  return (
+    <nav aria-label="Reference" className="ml-2 flex gap-4 max-sm:hidden">
+      {pages.map((page) => (
+        <Link
+          key={page.to}
+          to={page.to}
+          aria-current={pathname === page.to ? "page" : undefined}
+          className="text-ink-2 no-underline hover:underline aria-[current=page]:font-medium aria-[current=page]:text-ink"
+        >
+          {page.label}
+        </Link>
+      ))}
+    </nav>
+  );
+}
+
+/** Said wherever results stand, and in full on the methods page. */
+export const CAUTION =
+  "Computed estimates, to be confirmed by experiment; no basis for dosing, safety or regulatory decisions.";
+
+function Foot({ recipe, results }: { recipe?: ReactNode; results: boolean }) {
+  return (
+    <footer className="border-t border-rule text-xs text-ink-3">
+      <div className={`flex flex-wrap justify-between gap-x-6 gap-y-2 pt-4 pb-8 ${pageClass}`}>
+        <div className="grid max-w-[60rem] gap-1">
+          {recipe ? <p className="figures">{recipe}</p> : null}
+          {results ? (
+            <p>
+              {CAUTION}{" "}
+              <Link className={linkClass} to={`${href("/methods")}#caution`}>
+                In full
+              </Link>
+            </p>
+          ) : null}
+          {!recipe && !results ? <p>Lowlying keeps your original bytes, and gives them back.</p> : null}
+        </div>
+        <p className="flex flex-wrap gap-x-3 gap-y-1">
+          <Link className={linkClass} to={href("/methods")}>
+            Methods and sources
+          </Link>
+          <Link className={linkClass} to={href("/formats")}>
+            What the readers accept
+          </Link>
+          <a className={linkClass} href={href("/api/v1/openapi.json")}>
+            API description
+          </a>
+          <span>Constants: {CONSTANTS_YEAR}</span>
+        </p>
+      </div>
+    </footer>
+  );
+}
