@@ -33,6 +33,13 @@ export const answersSchema = z.object({
   energyTemperature: z.number().nullable().default(null),
 });
 
+/** Populations of a distinct set at 298.15 K; `shares` in falling order, the rest in the last. */
+export const siftSummarySchema = z.object({
+  shares: z.array(z.number()),
+  lowest: z.number().nullable(),
+  effectiveCount: z.number().nullable(),
+});
+
 // --- people -----------------------------------------------------------------------------------
 
 export const users = mysqlTable(
@@ -365,6 +372,8 @@ export const columns = mysqlTable(
     count: int().notNull(),
     /** Little-endian doubles by frame number, 0 where missing, then presence bits (frame 1 is bit 0 of byte 0). */
     data: bytesColumn().notNull(),
+    /** SHA-256 of `data`: tells without reading it whether a sift ran on these numbers. */
+    dataSha: sha256Column().notNull(),
     createdAt: timeColumn().notNull(),
   },
   (t) => [uniqueIndex("columns_name").on(t.ensembleId, t.name)],
@@ -412,6 +421,8 @@ export const sifts = mysqlTable(
     keptCount: int(),
     /** SiftResult as JSON text, written once when done. */
     result: longTextColumn(),
+    /** What tables of ensembles show of the result, so that they need not read it. */
+    summary: jsonColumn(siftSummarySchema)(),
     codeVersion: varchar({ length: 40 }),
     createdBy: idColumn(),
     createdAt: timeColumn().notNull(),
