@@ -1,0 +1,112 @@
+import { type ReactNode, useId, useRef, useState } from "react";
+import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { TextButton } from "~/components/ui/text-link";
+import { fixed } from "~/lib/format";
+import { toCsv } from "~/lib/workbench/tsv";
+import { figureSvg, saveText } from "./export-figure";
+
+export interface FigureColumn {
+  name: string;
+  unit?: string;
+  /** Decimals on the page; the CSV has every digit. Words where left out. */
+  digits?: number;
+}
+
+/** The numbers behind a figure: what the table shows and the CSV holds. */
+export interface FigureData {
+  columns: readonly FigureColumn[];
+  rows: readonly (readonly (string | number | null)[])[];
+}
+
+const ROWS_WITHOUT_SCRIPT = 200;
+const ROWS_SHOWN = 500;
+
+/** Title, what is drawn, and the same numbers as a table, as CSV and as an SVG file. */
+export function ChartFrame({
+  title,
+  data,
+  fileName,
+  note,
+  className = "",
+  children,
+}: {
+  title: string;
+  data: FigureData;
+  /** Without ending; letters, digits and hyphens. */
+  fileName: string;
+  note?: ReactNode;
+  className?: string;
+  children: ReactNode;
+}) {
+  const id = useId();
+  const figure = useRef<HTMLDivElement>(null);
+  const [open, setOpen] = useState(false);
+  const head = data.columns.map((column) => (column.unit ? `${column.name} [${column.unit}]` : column.name));
+  return (
+    <figure className={`min-w-0 ${className}`} aria-labelledby={id}>
+      <figcaption className="mb-2 flex items-baseline justify-between gap-3">
+        <h3 id={id} className="text-sm font-semibold">
+          {title}
+        </h3>
+        <span className="flex gap-3 text-xs print:hidden [&>button]:no-underline [&>button:hover]:underline">
+          <TextButton aria-expanded={open} aria-controls={`${id}-table`} onClick={() => setOpen(!open)}>
+            Table<span className="sr-only"> of {title}</span>
+          </TextButton>
+          <TextButton onClick={() => saveText(`${fileName}.csv`, "text/csv", toCsv(head, data.rows))}>
+            CSV<span className="sr-only"> of {title}</span>
+          </TextButton>
+          <TextButton
+            onClick={() => {
+              const svg = figure.current?.querySelector("svg");
+              if (svg) saveText(`${fileName}.svg`, "image/svg+xml", figureSvg(svg, title));
+            }}
+          >
+            SVG<span className="sr-only"> of {title}</span>
+          </TextButton>
+        </span>
+      </figcaption>
+      <div ref={figure}>{children}</div>
+      {note ? <p className="mt-1 text-xs text-ink-3">{note}</p> : null}
+      <div id={`${id}-table`} hidden={!open} className="mt-3 max-h-80 overflow-auto">
+        {open ? <FigureTable data={data} title={title} most={ROWS_SHOWN} /> : null}
+      </div>
+      <noscript>
+        <FigureTable data={data} title={title} most={ROWS_WITHOUT_SCRIPT} />
+      </noscript>
+    </figure>
+  );
+}
+
+function FigureTable({ data, title, most }: { data: FigureData; title: string; most: number }) {
+  const rest = data.rows.length - most;
+  return (
+    <>
+      <Table aria-label={title}>
+        <thead>
+          <tr>
+            {data.columns.map((column) => (
+              <Th key={column.name} unit={column.unit} align={column.digits === undefined ? "left" : "right"}>
+                {column.name}
+              </Th>
+            ))}
+          </tr>
+        </thead>
+        <tbody>
+          {data.rows.slice(0, most).map((row, k) => (
+            <Tr key={k}>
+              {row.map((cell, c) => {
+                const digits = data.columns[c]?.digits;
+                return (
+                  <Td key={c} align={digits === undefined ? "left" : "right"}>
+                    {typeof cell === "number" ? fixed(cell, digits ?? 0) : (cell ?? fixed(null, 0))}
+                  </Td>
+                );
+              })}
+            </Tr>
+          ))}
+        </tbody>
+      </Table>
+      {rest > 0 ? <p className="mt-2 text-xs text-ink-3">{rest} more rows in the CSV.</p> : null}
+    </>
+  );
+}

@@ -1,0 +1,231 @@
+import { depthColour } from "~/components/ui/depth-strip";
+import { fixed, formatEnergy, formatPopulation, plural, withUnit } from "~/lib/format";
+import { thermalEnergyKcal } from "~/lib/units";
+import type { ConformerRow, Outside } from "~/lib/workbench/conformers";
+import { shareWords, thermalLabel } from "~/lib/workbench/findings";
+import { type Ladder, mergeLabels } from "~/lib/workbench/ladder";
+import { ChartFrame } from "./chart-frame";
+import { ChartText, type Choose, Plot, usePlot } from "./plot";
+
+const BAR = 6;
+const NAMED = 6;
+
+/** Relative energy against population: a rung a conformer, as long as its population, the lowest at the bottom. */
+export function EnergyLadder({
+  rows,
+  ladder,
+  outside,
+  windowKcal,
+  temperatureK,
+  selected,
+  onChoose,
+}: {
+  rows: readonly ConformerRow[];
+  ladder: Ladder;
+  outside: Outside;
+  windowKcal: number | null;
+  temperatureK: number;
+  selected: ReadonlySet<number>;
+  onChoose: Choose;
+}) {
+  const widest = 100 * ladder.widest * 1.12;
+  const notes = [
+    ladder.above.count > 0
+      ? `${plural(ladder.above.count, "conformer")} above ${withUnit(formatEnergy(ladder.top), "kcal/mol")} not drawn, ${shareWords(ladder.above.share)}.`
+      : null,
+    ladder.covered > 0
+      ? `${plural(ladder.covered, "rung")} lie behind a more populated one of the same height.`
+      : null,
+  ].filter((note) => note !== null);
+  return (
+    <ChartFrame
+      title="Energy ladder"
+      fileName="energy-ladder"
+      note={notes.length > 0 ? notes.join(" ") : undefined}
+      data={{
+        columns: [
+          { name: "conformer" },
+          { name: "frame", digits: 0 },
+          { name: "relative energy", unit: "kcal/mol", digits: 2 },
+          { name: "population", unit: "%", digits: 1 },
+          { name: "weight", digits: 2 },
+        ],
+        rows: rows.map((row) => [
+          row.name,
+          row.frame,
+          row.relativeEnergy,
+          row.population === null ? null : 100 * row.population,
+          row.weight,
+        ]),
+      }}
+    >
+      <Plot
+        label={`Energy ladder: relative energy against population of ${plural(rows.length, "conformer")}`}
+        x={{ title: "population, %", low: 0, high: widest }}
+        y={{ title: "relative energy, kcal/mol", low: -0.035 * ladder.top, high: ladder.top }}
+        points={ladder.rungs.map((rung) => ({
+          x: 100 * rung.population,
+          y: rung.energy,
+          frame: rung.frame,
+          label: `${rung.name}, frame ${rung.frame}: ${withUnit(formatEnergy(rung.energy), "kcal/mol")}, ${withUnit(formatPopulation(rung.population), "%")}`,
+        }))}
+        onChoose={onChoose}
+      >
+        <LadderLayer
+          ladder={ladder}
+          outside={outside}
+          windowKcal={windowKcal}
+          temperatureK={temperatureK}
+          selected={selected}
+        />
+      </Plot>
+    </ChartFrame>
+  );
+}
+
+function LadderLayer({
+  ladder,
+  outside,
+  windowKcal,
+  temperatureK,
+  selected,
+}: {
+  ladder: Ladder;
+  outside: Outside;
+  windowKcal: number | null;
+  temperatureK: number;
+  selected: ReadonlySet<number>;
+}) {
+  const plot = usePlot();
+  if (!plot) return null;
+  const shownWindow = windowKcal !== null && windowKcal < ladder.top ? windowKcal : null;
+  const rt = thermalEnergyKcal(temperatureK);
+  const marks = [...ladder.rungs]
+    .sort((a, b) => b.population - a.population)
+    .slice(0, NAMED)
+    .map((rung) => ({ name: rung.name, x: plot.x(100 * rung.population), y: plot.y(rung.energy) }));
+  return (
+    <g>
+      {shownWindow !== null ? <WindowBand plot={plot} windowKcal={shownWindow} outside={outside} /> : null}
+      {rt < ladder.top ? (
+        <>
+          <path
+            d={`M${plot.left} ${plot.y(rt)}H${plot.right}`}
+            stroke="var(--color-rule-2)"
+            strokeDasharray="1 3"
+            strokeLinecap="round"
+          />
+          <ChartText x={plot.right} y={plot.y(rt) - 5} end halo>
+            {thermalLabel(temperatureK)}
+          </ChartText>
+        </>
+      ) : null}
+      {ladder.rungs.map((rung) => (
+        <Bar
+          key={rung.index}
+          x={plot.left}
+          y={plot.y(rung.energy)}
+          width={plot.x(100 * rung.population) - plot.left}
+          population={rung.population}
+          selected={selected.has(rung.frame)}
+        />
+      ))}
+      <path
+        d={ladder.curve.points
+          .map(
+            ({ energy, population }, k) =>
+              `${k === 0 ? "M" : "L"}${plot.x(100 * population).toFixed(1)} ${plot.y(energy).toFixed(1)}`,
+          )
+          .join("")}
+        fill="none"
+        stroke="var(--color-ink-3)"
+        strokeWidth={1}
+      />
+      <CurveLabel ladder={ladder} />
+      {mergeLabels(marks).map((label) => (
+        <ChartText key={label.names.join()} x={label.x + 8} y={label.y + 4} tone="ink" halo>
+          {label.names.join(", ")}
+        </ChartText>
+      ))}
+    </g>
+  );
+}
+
+/** The curve's name, where it has room: right of its upper part. */
+function CurveLabel({ ladder }: { ladder: Ladder }) {
+  const plot = usePlot();
+  const at = ladder.curve.points[Math.round(ladder.curve.points.length * 0.72)];
+  if (!plot || !at) return null;
+  const x = plot.x(100 * at.population);
+  const y = plot.y(at.energy);
+  return (
+    <>
+      <path d={`M${x + 3} ${y}H${x + 22}`} stroke="var(--color-ink-3)" strokeWidth={1} />
+      <ChartText x={x + 26} y={y + 4} halo>
+        {ladder.curve.weight === 1
+          ? ""
+          : `${fixed(ladder.curve.weight, Number.isInteger(ladder.curve.weight) ? 0 : 2)} `}
+        exp(−E/RT) / Z
+      </ChartText>
+    </>
+  );
+}
+
+function WindowBand({
+  plot,
+  windowKcal,
+  outside,
+}: {
+  plot: NonNullable<ReturnType<typeof usePlot>>;
+  windowKcal: number;
+  outside: Outside;
+}) {
+  const y = plot.y(windowKcal);
+  return (
+    <>
+      <rect
+        x={plot.left}
+        y={plot.top}
+        width={Math.max(0, plot.right - plot.left)}
+        height={Math.max(0, y - plot.top)}
+        fill="var(--color-sunk)"
+      />
+      <path d={`M${plot.left} ${y}H${plot.right}`} stroke="var(--color-mark)" strokeDasharray="5 4" />
+      <ChartText x={plot.right} y={y + 15} end tone="mark" halo>
+        window {formatEnergy(windowKcal)}
+      </ChartText>
+      <ChartText x={plot.right - 8} y={Math.max(plot.top + 12, (plot.top + y) / 2 + 4)} end>
+        outside: {plural(outside.count, "conformer")}
+        {outside.count > 0 ? `, ${shareWords(outside.share)}` : ""}
+      </ChartText>
+    </>
+  );
+}
+
+function Bar({
+  x,
+  y,
+  width,
+  population,
+  selected,
+}: {
+  x: number;
+  y: number;
+  width: number;
+  population: number;
+  selected: boolean;
+}) {
+  const length = Math.max(0, width);
+  return (
+    <>
+      <rect x={x} y={y - BAR / 2} width={length} height={BAR} fill={depthColour(population)} />
+      <rect
+        x={x + Math.max(0, length - 1.5)}
+        y={y - BAR / 2 - (selected ? 2 : 0)}
+        width={1.5}
+        height={BAR + (selected ? 4 : 0)}
+        fill={selected ? "var(--color-mark)" : "var(--color-ink)"}
+      />
+    </>
+  );
+}
