@@ -24,6 +24,7 @@ import { clickSelection } from "./selection.ts";
 import { sortRows } from "./sort-rows.ts";
 import { roundTicks, tickDigits } from "./ticks.ts";
 import { toCsv, toTsv } from "./tsv.ts";
+import { viewPlan } from "./view-plan.ts";
 
 const NBSP = "\u00a0";
 
@@ -165,8 +166,8 @@ describe("energy ladder", () => {
   const ladder = energyLadder(rows, 298.15, 3)!;
 
   test("a rung a conformer below the top, and the rest counted", () => {
-    // 99.5 % lie within 2.82 kcal/mol, so the window of 3.00 sets the end.
-    expect(ladder.top).toBeCloseTo(1.12 * 3, 12);
+    // c24 at 3.032803 kcal/mol is the one that completes 99.5 %.
+    expect(ladder.top).toBeCloseTo(1.12 * 3.032803, 6);
     expect(ladder.rungs.length + ladder.above.count + ladder.covered).toBe(31);
     expect(ladder.rungs[0]!.name).toBe("c1");
     expect(ladder.rungs[0]!.population).toBeCloseTo(0.285, 3);
@@ -426,4 +427,67 @@ test("axes get round values", () => {
   expect(roundTicks(5, 5)).toEqual([5]);
   expect(tickDigits([0, 0.25, 0.5])).toBe(2);
   expect(tickDigits([0, 20])).toBe(0);
+});
+
+describe("what the view shows", () => {
+  const roles = frameRoles(result);
+  const plan = (selected: number[], mode: "overlay" | "side" | "one" = "overlay", held = new Set([7])) =>
+    viewPlan({ rows: pentaneRows, roles, held, selected, mode, alignedOn: "aligned on heavy atoms" });
+
+  test("all kept conformers overlaid, the chosen ones first and the others from the most populated down", () => {
+    const { frames, caption, notDrawn } = plan([3]);
+    expect(frames.map((f) => [f.frame, f.selected])).toEqual([
+      [3, true],
+      [2, false],
+      [1, false],
+      [4, false],
+    ]);
+    expect(caption).toEqual({ strong: "Overlay", rest: "of 4, aligned on heavy atoms" });
+    expect(notDrawn).toBe(0);
+  });
+
+  test("a repeat is laid over the conformer it repeats, and the caption says how near", () => {
+    const { frames, caption } = plan([2, 5]);
+    expect(frames.map((f) => [f.frame, f.laidOver])).toEqual([
+      [2, false],
+      [5, true],
+    ]);
+    expect(caption).toEqual({
+      strong: "c2",
+      rest: `with frame 5 laid over it; mirror image, RMSD below 0.001${NBSP}Å`,
+    });
+  });
+
+  test("a held frame stands alone and is named so", () => {
+    expect(plan([7])).toMatchObject({
+      frames: [{ frame: 7, held: true, laidOver: false }],
+      caption: { strong: "Frame 7", rest: "held" },
+    });
+  });
+
+  test("one, and side by side up to four", () => {
+    expect(plan([2, 1], "one").frames.map((f) => f.frame)).toEqual([2]);
+    expect(plan([], "one").frames.map((f) => f.frame)).toEqual([1]);
+    expect(plan([1, 2, 3, 4], "side")).toMatchObject({ caption: { strong: "c1, c2, c3 and c4" } });
+  });
+
+  test("of very many the most populated are drawn, and the rest counted", () => {
+    const many = Array.from({ length: 1000 }, (_, k) => ({
+      ...pentane[0]!,
+      frame: k + 1,
+      relativeEnergy: k / 100,
+    }));
+    const manyRows = conformerRows(many, distinctPopulations(many, "electronic", 298.15), 3);
+    const { frames, notDrawn, caption } = viewPlan({
+      rows: manyRows,
+      roles: new Map(),
+      held: new Set(),
+      selected: [900],
+      mode: "overlay",
+      alignedOn: "aligned on heavy atoms",
+    });
+    expect(frames).toHaveLength(300);
+    expect(notDrawn).toBe(700);
+    expect(caption.rest).toContain("the 300 most populated of 1000");
+  });
 });
