@@ -54,7 +54,7 @@ export function perceiveBondOrders(
     for (const chosen of subsets(sites, count)) {
       const trial = charges.slice();
       for (const atom of chosen) trial[atom] = -1;
-      const orders = assign(molecule, trial, budget);
+      const orders = assign(molecule, trial, false, budget) ?? assign(molecule, trial, true, budget);
       if (orders !== null) return { orders, charges: trial };
       if (budget.left <= 0) return null;
     }
@@ -144,11 +144,19 @@ function wants(z: number, charge: number, degree: number): number[] | null {
 }
 
 /** Depth-first search, the atom with the fewest ways first; aromatic rings resolve without branching in practice. */
-function assign(molecule: Molecule, charges: Int8Array, budget: { left: number }): Uint8Array | null {
+function assign(
+  molecule: Molecule,
+  charges: Int8Array,
+  /** Two-bonded sulfur and single-bonded halogens may go beyond their smallest valence; rarely right, so tried last. */
+  expanded: boolean,
+  budget: { left: number },
+): Uint8Array | null {
   const { elements, pairs, incident } = molecule;
   const choices: number[][] = [];
   for (let atom = 0; atom < elements.length; atom++) {
-    const missing = wants(elements[atom]!, charges[atom]!, incident[atom]!.length);
+    const degree = incident[atom]!.length;
+    const all = wants(elements[atom]!, charges[atom]!, degree);
+    const missing = degree > 2 || expanded ? all : (all?.slice(0, 1) ?? null);
     if (missing === null) choices.push([0]);
     else if (missing.length === 0) return null;
     else choices.push(missing);
@@ -183,12 +191,6 @@ function raise(
     }
   }
   if (pick < 0) return true;
-  // Partners that lack a bond themselves come first: sulfur goes beyond two bonds only where nothing else works.
-  const content = (bond: number) => {
-    const other = partner(molecule, bond, pick);
-    return choices[other]!.includes(added[other]!) ? 1 : 0;
-  };
-  ways.sort((a, b) => content(a) - content(b));
   for (const bond of ways) {
     const [a, b] = molecule.pairs[bond]!;
     orders[bond] = orders[bond]! + 1;
