@@ -50,8 +50,8 @@ function Bar() {
   const { user } = useShellData();
   const { pathname } = useLocation();
   return (
-    <header className="border-b border-rule bg-paper print:border-0">
-      <div className="flex h-13 items-center gap-4 px-4 sm:px-6 xl:px-8">
+    <header className="h-13 border-b border-rule bg-paper print:border-0">
+      <div className="flex h-full items-center gap-4 px-4 sm:px-6 xl:px-8">
         <Brand short={crumbs.length > 0} />
         {crumbs.length > 0 ? <Breadcrumbs crumbs={crumbs} /> : <References pathname={pathname} />}
         <div className="ml-auto flex items-center gap-3 print:hidden">

@@ -22,8 +22,8 @@ export function Door({
 }) {
   return (
     <div className="flex min-h-dvh flex-col">
-      <header className="border-b border-rule">
-        <div className="flex h-13 items-center px-4 sm:px-6 xl:px-8">
+      <header className="h-13 border-b border-rule">
+        <div className="flex h-full items-center px-4 sm:px-6 xl:px-8">
           <Brand />
         </div>
       </header>
