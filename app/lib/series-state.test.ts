@@ -2,6 +2,8 @@ import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import {
   chooseRows,
+  levelLegend,
+  levelNames,
   nextSort,
   ROW_STATES,
   readSeriesState,
@@ -136,6 +138,21 @@ describe("rows", () => {
     expect(rowState(row({ sift: null }))).toBe("open");
     const running = { ...done(0, []), status: "queued" } as EnsembleRow["sift"];
     expect(rowState(row({ sift: running }))).toBe("running");
+  });
+});
+
+describe("level legend", () => {
+  const levels = (...names: string[]) => names.map((name, i) => ({ name, ordinal: i + 1 }));
+
+  it("names the markers where each means one level, and nothing where they differ", () => {
+    const alike = [row({ levels: levels("MMFF94", "UFF") }), row({ levels: levels("MMFF94") })];
+    expect(levelLegend(alike)).toEqual(levels("MMFF94", "UFF"));
+    expect(levelLegend([...alike, row({ levels: levels("UFF") })])).toEqual([]);
+    expect(levelNames([...alike, row({ levels: levels("AM1", "MMFF94") })])).toEqual([
+      "AM1",
+      "MMFF94",
+      "UFF",
+    ]);
   });
 });
 

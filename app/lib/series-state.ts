@@ -170,6 +170,30 @@ export function isFiltered(state: SeriesState): boolean {
   return state.q !== "" || state.level !== null || state.state !== null || state.held !== null;
 }
 
+/** Names of all levels of the rows, by order of arrival and then by name. */
+export function levelNames(rows: readonly EnsembleRow[]): string[] {
+  const first = new Map<string, number>();
+  for (const { name, ordinal } of rows.flatMap((row) => row.levels)) {
+    first.set(name, Math.min(ordinal, first.get(name) ?? ordinal));
+  }
+  return [...first].sort((a, b) => a[1] - b[1] || collator.compare(a[0], b[0])).map(([name]) => name);
+}
+
+/**
+ * Marker and name of every level, where each marker means one level and each level has one marker in all rows;
+ * else nothing, since a marker belongs to the order of arrival in its own ensemble.
+ */
+export function levelLegend(rows: readonly EnsembleRow[]): EnsembleRow["levels"] {
+  const names = new Map<number, string>();
+  const ordinals = new Map<string, number>();
+  for (const { name, ordinal } of rows.flatMap((row) => row.levels)) {
+    if ((names.get(ordinal) ?? name) !== name || (ordinals.get(name) ?? ordinal) !== ordinal) return [];
+    names.set(ordinal, name);
+    ordinals.set(name, ordinal);
+  }
+  return [...names].map(([ordinal, name]) => ({ name, ordinal })).sort((a, b) => a.ordinal - b.ordinal);
+}
+
 /**
  * The sentence a series opens with, counted over all its rows.
  *

@@ -55,7 +55,7 @@ export function EnsembleTable({
           <Th {...head("distinct")} align="right" className={WIDE}>
             Distinct
           </Th>
-          <Th {...head("strip")} unit="shares at 298.15 K" className="max-sm:w-32">
+          <Th {...head("strip")} unit="shares at 298.15 K" className="max-sm:w-30">
             Depth strip
           </Th>
           <Th {...head("lowest")} align="right" unit="%" className="max-sm:w-14">
@@ -100,7 +100,7 @@ function EnsembleLine({
   const sift = row.sift;
   return (
     <Tr className="hover:bg-sheet">
-      <Td tall className="max-w-96 whitespace-normal">
+      <Td tall wrap className="max-w-96">
         <Link
           to={href("/ensembles/:id", { id: row.id })}
           className="font-medium break-words text-ink no-underline hover:underline"

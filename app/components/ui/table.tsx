@@ -75,15 +75,23 @@ export function Tr({ selected, className = "", ...rest }: ComponentProps<"tr"> &
   );
 }
 
-/** A cell: figures right, words left. `tall` rows are 48 px, 64 on phones, where a name takes two lines. */
+/** A cell: figures right, words left. `tall` rows are 48 px, 64 on phones, where a name takes two lines; words of a `wrap` cell break. */
 export function Td({
   align = "left",
   tall = false,
+  wrap = false,
   className = "",
   ...rest
-}: Omit<ComponentProps<"td">, "align"> & { align?: "left" | "right" | "center"; tall?: boolean }) {
+}: Omit<ComponentProps<"td">, "align"> & {
+  align?: "left" | "right" | "center";
+  tall?: boolean;
+  wrap?: boolean;
+}) {
   const height = tall ? "h-12 max-sm:h-16" : "h-row max-sm:h-11 pointer-coarse:h-11";
   return (
-    <td className={`px-3 whitespace-nowrap max-sm:px-2 ${height} ${ALIGN[align]} ${className}`} {...rest} />
+    <td
+      className={`px-3 max-sm:px-2 ${wrap ? "whitespace-normal" : "whitespace-nowrap"} ${height} ${ALIGN[align]} ${className}`}
+      {...rest}
+    />
   );
 }
