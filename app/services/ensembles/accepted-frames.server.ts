@@ -37,8 +37,8 @@ export async function frameStrip(ensembleId: string): Promise<string> {
 }
 
 /** Which frames a computation may use, and where their coordinates lie. */
-export async function acceptedFrames(ensembleId: string): Promise<AcceptedFrames> {
-  const text = await stateText(db, ensembleId);
+export async function acceptedFrames(ensembleId: string, on: Queryable = db): Promise<AcceptedFrames> {
+  const text = await stateText(on, ensembleId);
   const numbers: number[] = [];
   const indices: number[] = [];
   let index = 0;

@@ -1,5 +1,5 @@
 import { and, asc, eq } from "drizzle-orm";
-import { db } from "../../db/client.server.ts";
+import { db, type Queryable } from "../../db/client.server.ts";
 import { frameBlocks } from "../../db/schema.server.ts";
 
 /**
@@ -13,13 +13,14 @@ export async function loadPositions(
   ensembleId: string,
   atoms: number,
   indices: ArrayLike<number>,
+  on: Queryable = db,
 ): Promise<Float64Array> {
   const length = atoms * 3;
   const positions = new Float64Array(indices.length * length);
   const wanted = Array.from({ length: indices.length }, (_, row) => row).sort(
     (a, b) => (indices[a] ?? 0) - (indices[b] ?? 0),
   );
-  const blocks = await db
+  const blocks = await on
     .select({ first: frameBlocks.first, count: frameBlocks.count })
     .from(frameBlocks)
     .where(and(eq(frameBlocks.ensembleId, ensembleId), eq(frameBlocks.shape, 0)))
@@ -29,7 +30,7 @@ export async function loadPositions(
     const begin = next;
     while (next < wanted.length && (indices[wanted[next] ?? 0] ?? 0) < first + count) next += 1;
     if (next === begin) continue;
-    const block = await readBlock(ensembleId, first);
+    const block = await readBlock(on, ensembleId, first);
     for (const row of wanted.slice(begin, next)) {
       const from = ((indices[row] ?? 0) - first) * length;
       positions.set(block.subarray(from, from + length), row * length);
@@ -39,8 +40,8 @@ export async function loadPositions(
   return positions;
 }
 
-async function readBlock(ensembleId: string, first: number): Promise<Float64Array> {
-  const rows = await db
+async function readBlock(on: Queryable, ensembleId: string, first: number): Promise<Float64Array> {
+  const rows = await on
     .select({ data: frameBlocks.data })
     .from(frameBlocks)
     .where(

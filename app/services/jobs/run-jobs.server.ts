@@ -131,8 +131,3 @@ export async function startJobs(): Promise<void> {
   state.timer.unref();
   await beat();
 }
-
-/** How far a job of this process has come; null for one that runs elsewhere or not at all. */
-export function progressHere(jobId: string): number | null {
-  return jobState().running.get(jobId)?.progress ?? null;
-}

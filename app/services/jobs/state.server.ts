@@ -49,3 +49,8 @@ export function jobState(): JobState {
 export function forgetJobState(): void {
   kept.lowlyingJobs = undefined;
 }
+
+/** How far a job of this process has come; null for one that runs elsewhere or not at all. */
+export function progressHere(jobId: string): number | null {
+  return jobState().running.get(jobId)?.progress ?? null;
+}

@@ -1,0 +1,79 @@
+import { and, asc, eq, isNull } from "drizzle-orm";
+import { db } from "../../db/client.server.ts";
+import { ensembleFiles, ensembles, series, sources, teams } from "../../db/schema.server.ts";
+import type { EnsembleView, FileView } from "../../lib/views.ts";
+import { type Actor, accessEnsemble, roleMay } from "../auth/access.server.ts";
+import { notFound } from "../http.server.ts";
+import { frameStrip } from "./accepted-frames.server.ts";
+import { findColumns, toLevels } from "./find-columns.server.ts";
+import { unpackMolecule } from "./molecule.server.ts";
+
+/** The files of an ensemble in the order of their frames. */
+export async function findFiles(ensembleId: string): Promise<FileView[]> {
+  const rows = await db
+    .select({
+      position: ensembleFiles.position,
+      name: ensembleFiles.name,
+      format: ensembleFiles.format,
+      sha256: sources.sha256,
+      bytes: sources.bytes,
+      firstFrame: ensembleFiles.firstFrame,
+      frames: ensembleFiles.frames,
+    })
+    .from(ensembleFiles)
+    .innerJoin(sources, eq(sources.id, ensembleFiles.sourceId))
+    .where(eq(ensembleFiles.ensembleId, ensembleId))
+    .orderBy(asc(ensembleFiles.position));
+  return rows.map((row) => ({ ...row, sha256: row.sha256?.toString("hex") ?? "" }));
+}
+
+/** The row of a living ensemble with the names around it, bound to the team of the grant. */
+export async function findEnsembleRow(teamId: string, ensembleId: string) {
+  const rows = await db
+    .select({
+      ensemble: ensembles,
+      team: { id: teams.id, name: teams.name },
+      series: { id: series.id, name: series.name },
+    })
+    .from(ensembles)
+    .innerJoin(teams, eq(teams.id, ensembles.teamId))
+    .innerJoin(series, eq(series.id, ensembles.seriesId))
+    .where(and(eq(ensembles.id, ensembleId), eq(ensembles.teamId, teamId), isNull(ensembles.deletedAt)))
+    .limit(1);
+  const row = rows[0];
+  if (row === undefined) throw notFound();
+  return row;
+}
+
+/** What every page of an ensemble shows around its sections. */
+export async function loadEnsemble(options: { actor: Actor; ensembleId: string }): Promise<EnsembleView> {
+  const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
+  const row = await findEnsembleRow(grant.teamId, grant.ensembleId);
+  const { ensemble } = row;
+  const [strip, files] = await Promise.all([frameStrip(ensemble.id), findFiles(ensemble.id)]);
+  const graph = unpackMolecule(ensemble);
+  return {
+    id: ensemble.id,
+    name: ensemble.name,
+    formula: ensemble.formula,
+    atoms: ensemble.atoms,
+    frames: ensemble.frames,
+    accepted: ensemble.accepted,
+    remarked: ensemble.remarked,
+    held: ensemble.held,
+    openQuestions: ensemble.openQuestions,
+    chirality: ensemble.chirality,
+    chiralityNote: ensemble.chiralityNote,
+    example: ensemble.example,
+    team: row.team,
+    series: row.series,
+    elements: [...graph.elements],
+    bonds: [...graph.bonds],
+    levels: toLevels(await findColumns(ensemble.id, strip)),
+    files,
+    createdAt: ensemble.createdAt.toISOString(),
+    changedAt: ensemble.changedAt.toISOString(),
+    role: grant.role,
+    mayCompute: roleMay(grant.role, "compute"),
+  };
+}

@@ -1,0 +1,27 @@
+import type { SiftView } from "../../lib/views.ts";
+import { type Actor, accessSift } from "../auth/access.server.ts";
+import { waitForJob } from "../jobs/wait-for-job.server.ts";
+import { findSift, toSiftView } from "./find-sift.server.ts";
+
+/**
+ * One sift, after waiting for its end where asked to.
+ *
+ * @param options.waitSeconds answers when it has ended, at the latest after so many seconds
+ */
+export async function getSift(options: {
+  actor: Actor;
+  siftId: string;
+  waitSeconds?: number;
+  signal?: AbortSignal;
+}): Promise<SiftView & { ensemble: string }> {
+  const grant = await accessSift(options.actor, "read", options.siftId);
+  let sift = await findSift(grant.siftId);
+  const wait = options.waitSeconds ?? 0;
+  if (wait > 0 && (sift.status === "queued" || sift.status === "running")) {
+    await waitForJob(sift.jobId, wait * 1000, options.signal);
+    // Access is decided again: a role may have been lost meanwhile.
+    await accessSift(options.actor, "read", options.siftId);
+    sift = await findSift(grant.siftId);
+  }
+  return { ...(await toSiftView(sift)), ensemble: grant.ensembleId };
+}
