@@ -1,16 +1,21 @@
-import { href, redirect } from "react-router";
+import { redirect } from "react-router";
+import { requestIdContext } from "~/context";
+import { env } from "~/env.server";
+import { ownPath } from "~/lib/own-path";
 import { parseTheme, writeThemeCookie } from "~/lib/theme";
+import { forPage, notFound, pageError } from "~/services/http.server";
 import type { Route } from "./+types/theme";
 
-/** Keeps the choice of day or night chart and goes back to the page it was made on. */
-export async function action({ request }: Route.ActionArgs) {
-  const form = await request.formData();
-  const back = String(form.get("back") ?? "");
-  // One slash and no backslash: an address of ours, never another host.
-  const to = /^\/(?![/\\])[^\\]*$/.test(back) ? back : href("/");
-  return redirect(to, { headers: { "Set-Cookie": writeThemeCookie(parseTheme(form.get("theme"))) } });
+/** Form fields: `theme` (light, dark, or empty for the system's), and `back`, the page to return to. */
+export async function action({ request, context }: Route.ActionArgs) {
+  const form = await forPage(context.get(requestIdContext), () => request.formData());
+  const cookie = writeThemeCookie(parseTheme(form.get("theme")));
+  return redirect(ownPath(form.get("back"), "/"), {
+    status: 303,
+    headers: { "set-cookie": env().secure ? `${cookie}; Secure` : cookie },
+  });
 }
 
-export function loader() {
-  return redirect(href("/"));
+export function loader({ context }: Route.LoaderArgs) {
+  throw pageError(notFound(), context.get(requestIdContext));
 }

@@ -53,13 +53,13 @@ function unexpected(error: unknown, requestId: string): DomainError {
   );
 }
 
-function away(error: unknown, requestId: string): DomainError {
-  log.warn({ err: error, requestId }, "database away");
+/** What pages and calls answer while the database is away; 503 with Retry-After. */
+export function databaseAway(cause?: unknown): DomainError {
   return new DomainError(
     "unavailable",
     "The server does not answer",
     "The database is away for the moment. Nothing that was acknowledged is lost. Try again in a few seconds.",
-    { cause: error },
+    { cause },
   );
 }
 
@@ -72,7 +72,9 @@ export function incidentNumber(requestId: string): string {
 /** Any failure as an expected one; what was not expected is logged here, once. */
 export function asDomainError(error: unknown, requestId: string): DomainError {
   if (error instanceof DomainError) return error;
-  return isDatabaseAway(error) ? away(error, requestId) : unexpected(error, requestId);
+  if (!isDatabaseAway(error)) return unexpected(error, requestId);
+  log.warn({ err: error, requestId }, "database away");
+  return databaseAway(error);
 }
 
 /** `application/problem+json` (RFC 9457) of an expected failure. */
@@ -138,6 +140,26 @@ export async function forPage<Result>(requestId: string, work: () => Promise<Res
     if (error instanceof Response || isDataWithStatus(error)) throw error;
     throw pageError(error, requestId);
   }
+}
+
+/** What a form shows again when its action was refused: the sentence, and one for each field at fault. */
+export interface FormFailure {
+  message: string;
+  fields: Record<string, string>;
+}
+
+/**
+ * Answers a form with the refusal that its page can show; everything else goes on to the error page.
+ *
+ * @param typed what the fields held, to be shown again; never a password
+ */
+export function refuseForm<Typed extends Record<string, string>>(error: unknown, typed: Typed) {
+  if (!(error instanceof DomainError) || error.code === "unavailable") throw error;
+  const pairs = error.faults.flatMap(({ field, message }) => (field ? [[field, message] as const] : []));
+  const fields: FormFailure["fields"] = Object.fromEntries(pairs);
+  const wait = error.extra.retryAfter;
+  const headers = typeof wait === "number" ? { "retry-after": String(wait) } : undefined;
+  return data({ message: error.message, fields, ...typed }, { status: statusOf(error), headers });
 }
 
 /** Runs the service call of an API or file route; failures become problem documents. */

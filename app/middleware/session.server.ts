@@ -1,0 +1,33 @@
+import type { MiddlewareFunction } from "react-router";
+import { actorContext, cookieChangeContext, requestIdContext } from "../context.ts";
+import { type FoundSession, findSession } from "../services/auth/find-session.server.ts";
+import { asDomainError } from "../services/http.server.ts";
+import { refuse } from "./refuse.server.ts";
+import { readSessionCookie, writeSessionCookie } from "./session-cookie.server.ts";
+
+async function sessionOf(cookies: string | null): Promise<FoundSession | null> {
+  const secret = cookies === null ? null : await readSessionCookie(cookies);
+  return secret === null ? null : findSession(secret);
+}
+
+/**
+ * Finds out who calls, from the cookie. It alone writes the cookie: sign-in and sign-out leave their wish in the
+ * context, so that loaders that run side by side cannot overwrite each other's.
+ */
+export const sessionMiddleware: MiddlewareFunction<Response> = async ({ request, url, context }, next) => {
+  const wish: { change: { secret: string | null; stay: boolean } | null } = { change: null };
+  context.set(cookieChangeContext, wish);
+  let session: FoundSession | null;
+  try {
+    session = await sessionOf(request.headers.get("cookie"));
+  } catch (error) {
+    const requestId = context.get(requestIdContext);
+    return refuse(url, asDomainError(error, requestId), requestId);
+  }
+  if (session !== null) context.set(actorContext, { kind: "user", ...session });
+
+  const response = await next();
+
+  if (wish.change !== null) response.headers.append("set-cookie", await writeSessionCookie(wish.change));
+  return response;
+};

@@ -1,0 +1,35 @@
+import { env } from "../env.server.ts";
+import { DomainError } from "../lib/errors.ts";
+import { boot, shutDown } from "./boot.server.ts";
+import { log } from "./log.server.ts";
+
+/** Calls that carry files; their own readers count the bytes. Everything else is a small form or a small JSON. */
+const UPLOADS = /^\/+(files\/upload|api\/v1\/ensembles(\/[^/]+\/(files|columns))?)\/?(\.data)?$/i;
+const SMALL_BODY_BYTES = 2 ** 20;
+
+/** Most bytes that the body of a request to this address may have; null where its route counts them itself. */
+export function bodyLimit(pathname: string): number | null {
+  return UPLOADS.test(pathname) ? null : SMALL_BODY_BYTES;
+}
+
+/** What reading a body throws beyond its limit; routes turn it into 413. */
+export function bodyTooLarge(limit: number): DomainError {
+  const mebibytes = limit / 2 ** 20;
+  return new DomainError("too-large", "Too large", `At most ${mebibytes} MB can be sent to this address.`);
+}
+
+/**
+ * Address of the caller. Behind `trusted` proxies of ours it is the entry that the outermost of them wrote; what a
+ * caller wrote before it counts for nothing.
+ *
+ * @example clientAddress("127.0.0.1", "6.6.6.6, 192.0.2.7", 1) // "192.0.2.7"
+ */
+export function clientAddress(peer: string, forwarded: string | undefined, trusted: number): string {
+  if (trusted === 0 || forwarded === undefined) return peer;
+  const entries = forwarded.split(",").map((entry) => entry.trim());
+  const entry = entries[Math.max(0, entries.length - trusted)] ?? "";
+  return /^[0-9a-f.:]{2,45}$/i.test(entry) ? entry : peer;
+}
+
+/** What the process around the server build needs of it. */
+export const application = { boot, shutDown, env, log, bodyLimit, bodyTooLarge, clientAddress };

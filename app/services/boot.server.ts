@@ -1,0 +1,64 @@
+import { closeDatabase } from "../db/client.server.ts";
+import { migrateDatabase } from "../db/migrate.server.ts";
+import { env } from "../env.server.ts";
+import { sweepEnded } from "./auth/sweep.server.ts";
+import { settleBackground } from "./background.server.ts";
+import { workerBundle, workerBundleExists } from "./jobs/pool.server.ts";
+import { startJobs } from "./jobs/run-jobs.server.ts";
+import { shutDownJobs } from "./jobs/shutdown.server.ts";
+import { log } from "./log.server.ts";
+import { startMail, stopMail } from "./mail/send-mail.server.ts";
+import { closeDemoAccounts, seedPeople } from "./teams/seed-people.server.ts";
+
+const SWEEP_EVERY_MS = 3_600_000;
+
+export interface Booted {
+  /** What the start prints; null where there are no demo accounts. */
+  demo: { email: string; password: string } | null;
+}
+
+async function seed(): Promise<Booted["demo"]> {
+  const { public: open, DEMO_PASSWORD: password } = env();
+  if (open) {
+    await closeDemoAccounts();
+    return null;
+  }
+  if (password === undefined) return null;
+  await seedPeople(password);
+  return { email: "analyst@lowlying.example", password };
+}
+
+let sweeper: NodeJS.Timeout | undefined;
+
+function startSweeping(): void {
+  const sweep = () => sweepEnded().catch((error) => log.warn({ err: error }, "not swept"));
+  sweeper = setInterval(sweep, SWEEP_EVERY_MS);
+  sweeper.unref();
+  sweep();
+}
+
+/**
+ * Brings the application up to where requests can be served: settings checked, tables up to date, demo people and
+ * data there, jobs and mail under way.
+ *
+ * @throws EnvError, DatabaseSettingsError, or what the database says; nothing is left running then
+ */
+export async function boot(): Promise<Booted> {
+  // A missing thread entry would end the server at the first sift.
+  if (!workerBundleExists()) throw new Error(`${workerBundle()} is missing: run npm run build.`);
+  await migrateDatabase();
+  const demo = await seed();
+  await startJobs();
+  startMail();
+  startSweeping();
+  return { demo };
+}
+
+/** Ends what `boot` started: jobs go back to the queue, letters on their way are finished, connections closed. */
+export async function shutDown(): Promise<void> {
+  clearInterval(sweeper);
+  await shutDownJobs();
+  await settleBackground();
+  await stopMail();
+  await closeDatabase();
+}
