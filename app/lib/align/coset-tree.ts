@@ -24,13 +24,14 @@ export class CosetTree {
   readonly childM: Float64Array[];
   readonly childSlack: Float64Array[];
   /** Map h of the chosen node at each depth, n each. */
-  private readonly maps: Int32Array;
+  readonly maps: Int32Array;
   private readonly rest = new Float64Array(9);
-  private x: Float64Array = new Float64Array(0);
-  private xo = 0;
-  private y: Float64Array = new Float64Array(0);
-  private yo = 0;
-  private hand = 1;
+  /** The pair: arrays, offsets, and -1 where the mirror image of y is meant. */
+  x: Float64Array = new Float64Array(0);
+  xo = 0;
+  y: Float64Array = new Float64Array(0);
+  yo = 0;
+  hand: 1 | -1 = 1;
 
   constructor(readonly plan: SymmetryPlan) {
     this.depth = plan.levels.length;

@@ -280,9 +280,17 @@ function rotatePlane(p: number, q: number): void {
 /**
  * The proper rotation R, row major, that brings x best onto y (y ~ R x). Where several are equally good (linear sets,
  * one atom) it is one of them.
+ *
+ * @returns by how much the largest root lies above the second: how firmly M holds the rotation
  */
-export function rotationInto(m: Float64Array, at: number, rotation: Float64Array): void {
-  eigenSystem(m, at);
+export function rotationInto(m: Float64Array, at: number, rotation: Float64Array): number {
+  const largest = eigenSystem(m, at);
+  let second = Number.NEGATIVE_INFINITY;
+  let skipped = false;
+  for (let p = 0; p < 16; p += 5) {
+    if (K[p] === largest && !skipped) skipped = true;
+    else if (K[p]! > second) second = K[p]!;
+  }
   const w = Q[0]!;
   const x = Q[1]!;
   const y = Q[2]!;
@@ -296,6 +304,7 @@ export function rotationInto(m: Float64Array, at: number, rotation: Float64Array
   rotation[6] = 2 * (x * z - w * y);
   rotation[7] = 2 * (y * z + w * x);
   rotation[8] = w * w - x * x - y * y + z * z;
+  return largest - second;
 }
 
 const M = new Float64Array(9);

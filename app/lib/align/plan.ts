@@ -14,6 +14,8 @@ export interface PlanLevel {
   readonly images: number;
   /** images x n: local permutations, the first the identity. */
   readonly permutations: Int32Array;
+  /** All cells that are open before. */
+  readonly open: Int32Array;
   /** Cells that fall apart here ... */
   readonly removed: Int32Array;
   /** ... into single atoms and ... */
@@ -117,6 +119,7 @@ function layOut(chain: StabiliserChain, chosen: Int32Array, local: Int32Array) {
       classes,
       cells,
     );
+    const before = Int32Array.from(open);
     open = [...open.filter((c) => !removed.includes(c)), ...parts.added];
     const permutations = new Int32Array(level.transversal.length * n);
     level.transversal.forEach((u, k) => {
@@ -125,6 +128,7 @@ function layOut(chain: StabiliserChain, chosen: Int32Array, local: Int32Array) {
     return {
       images: level.transversal.length,
       permutations,
+      open: before,
       removed: Int32Array.from(removed),
       singles: Int32Array.from(parts.singles),
       added: Int32Array.from(parts.added),

@@ -1,9 +1,13 @@
 import { CosetTree } from "./coset-tree.ts";
 import { alignedRmsd, largestRoot } from "./kernel.ts";
+import { LocalBound } from "./local-bound.ts";
 import { distancesExceed, type SymmetryPlan } from "./plan.ts";
 
 /** Nodes of the search tree that one comparison may look at before its answer counts as a bound from above. */
 export const DEFAULT_NODE_LIMIT = 200_000;
+
+/** Nodes after which the sharper, dearer bound joins in: easy pairs are done by then. */
+const PLAIN_NODES = 64;
 
 /** Outcome of one comparison. */
 export interface Comparison {
@@ -24,6 +28,7 @@ export interface Comparison {
  */
 export class SymmetricRmsd {
   private readonly tree: CosetTree;
+  private readonly local: LocalBound;
   /** Children of the chosen node at each depth that are worth a visit, best first, and their bounds. */
   private readonly order: Int32Array[];
   private readonly bounds: Float64Array[];
@@ -41,6 +46,7 @@ export class SymmetricRmsd {
     public nodeLimit = DEFAULT_NODE_LIMIT,
   ) {
     this.tree = new CosetTree(plan);
+    this.local = new LocalBound(this.tree);
     this.order = plan.levels.map((level) => new Int32Array(level.images));
     this.bounds = plan.levels.map((level) => new Float64Array(level.images));
     this.count = new Int32Array(plan.levels.length);
@@ -190,6 +196,11 @@ export class SymmetricRmsd {
         break;
       }
       tree.descend(depth, k);
+      // The margin covers the rounding of the sharper bound, whose parts are carried from node to node.
+      if (nodes > PLAIN_NODES && this.local.hopeless(depth + 1, need - 100 * rounding, spread / 2)) {
+        nodes += 4;
+        continue;
+      }
       depth += 1;
       nodes += this.open(depth, need, spread / 2);
     }
