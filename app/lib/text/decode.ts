@@ -1,0 +1,78 @@
+const utf8 = new TextDecoder("utf-8", { fatal: true, ignoreBOM: true });
+const legacy = new TextDecoder("windows-1252");
+
+/** A line's text; `legacy` is true where its bytes are not UTF-8 and were read as Windows-1252 (row G03). */
+export interface DecodedText {
+  text: string;
+  legacy: boolean;
+}
+
+/** Text of the bytes from `start` up to, not including, `end`. Each line decides for itself, so that chunks do not matter. */
+export function decodeText(bytes: Uint8Array, start: number, end: number): DecodedText {
+  const piece = bytes.subarray(start, end);
+  try {
+    return { text: utf8.decode(piece), legacy: false };
+  } catch {
+    return { text: legacy.decode(piece), legacy: true };
+  }
+}
+
+type Encoding = "utf-8" | "utf-16le" | "utf-16be";
+
+/**
+ * Turns a stream of file bytes into UTF-8 without byte order mark: UTF-16 with mark is decoded, anything else passes
+ * through untouched (row G02). Push pieces, then `end()`.
+ *
+ * @example new Utf8Stream().push(Uint8Array.of(0xef, 0xbb, 0xbf, 0x31)) // [0x31]
+ */
+export class Utf8Stream {
+  #head = new Uint8Array(0);
+  #encoding: Encoding | null = null;
+  #decoder: TextDecoder | null = null;
+  readonly #encoder = new TextEncoder();
+
+  push(chunk: Uint8Array): Uint8Array {
+    if (this.#encoding === null) return this.#begin(chunk, false);
+    return this.#pass(chunk);
+  }
+
+  /** What was kept back: a mark that never came, half a character. */
+  end(): Uint8Array {
+    const kept = this.#encoding === null ? this.#begin(new Uint8Array(0), true) : new Uint8Array(0);
+    const tail = this.#decoder === null ? kept : join(kept, this.#encoder.encode(this.#decoder.decode()));
+    return tail;
+  }
+
+  #begin(chunk: Uint8Array, last: boolean): Uint8Array {
+    const head = join(this.#head, chunk);
+    if (head.length < 3 && !last) {
+      this.#head = head;
+      return new Uint8Array(0);
+    }
+    this.#encoding = encodingByMark(head);
+    if (this.#encoding !== "utf-8") {
+      this.#decoder = new TextDecoder(this.#encoding);
+      return this.#pass(head);
+    }
+    return head[0] === 0xef && head[1] === 0xbb && head[2] === 0xbf ? head.subarray(3) : head;
+  }
+
+  #pass(chunk: Uint8Array): Uint8Array {
+    if (this.#decoder === null) return chunk;
+    return this.#encoder.encode(this.#decoder.decode(chunk, { stream: true }));
+  }
+}
+
+/** The encoding that the first bytes announce; UTF-8 without a mark of UTF-16. */
+export function encodingByMark(bytes: Uint8Array): Encoding {
+  if (bytes[0] === 0xff && bytes[1] === 0xfe) return "utf-16le";
+  if (bytes[0] === 0xfe && bytes[1] === 0xff) return "utf-16be";
+  return "utf-8";
+}
+
+function join(a: Uint8Array, b: Uint8Array): Uint8Array<ArrayBuffer> {
+  const joined = new Uint8Array(a.length + b.length);
+  joined.set(a);
+  joined.set(b, a.length);
+  return joined;
+}

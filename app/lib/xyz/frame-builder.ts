@@ -1,0 +1,179 @@
+import {
+  type CommentOddity,
+  type ExtendedEntry,
+  hasProperties,
+  parseExtendedComment,
+} from "../intake/extended-comment.ts";
+import { type AtomFault, looksLikeAtom, type ReadAtom, readAtomLine } from "./atom-line.ts";
+import type { CountLine } from "./count-line.ts";
+import { type ExtraColumn, isPlainOrder, type Layout, PLAIN_LAYOUT, parseProperties } from "./layout.ts";
+import type { PlainTarget } from "./plain-atoms.ts";
+
+/** A fault with the line it stands on, and the atom (from 1) where it concerns one. */
+export interface BuilderFault extends AtomFault {
+  readonly line: number;
+  readonly atom?: number;
+}
+
+/** One line for the slow path. */
+export interface TextLine {
+  readonly text: string;
+  readonly number: number;
+}
+
+const NO_KEYS: ReadonlyMap<string, ExtendedEntry> = new Map();
+const NO_ODDITIES: ReadonlyMap<CommentOddity, string> = new Map();
+
+/**
+ * One frame in the making: fed with its comment and atom lines, it keeps the first fault and goes on to the last of
+ * its lines, so that the frames behind it keep their places.
+ */
+export class FrameBuilder implements PlainTarget {
+  readonly count: number;
+  readonly countLine: CountLine;
+  readonly line: number;
+  readonly elements: Uint8Array;
+  readonly positions: Float64Array;
+  isotopes: Uint16Array | null = null;
+  labels: (string | null)[] | null = null;
+  read = 0;
+  extra = -1;
+
+  comment: string | null = null;
+  extended = false;
+  keys: ReadonlyMap<string, ExtendedEntry> = NO_KEYS;
+  oddities: ReadonlyMap<CommentOddity, string> = NO_ODDITIES;
+  commentLikeAtom = false;
+  layout: Layout | null = PLAIN_LAYOUT;
+  fault: BuilderFault | null = null;
+
+  dummies = 0;
+  /** First line where it happened, 0 for never. */
+  numbersForSymbols = 0;
+  carets = 0;
+  substitutions = 0;
+  commaLines = 0;
+
+  constructor(countLine: CountLine, line: number) {
+    this.count = countLine.count;
+    this.countLine = countLine;
+    this.line = line;
+    this.elements = new Uint8Array(this.count);
+    this.positions = new Float64Array(3 * this.count);
+  }
+
+  get complete(): boolean {
+    return this.comment !== null && this.read >= this.count;
+  }
+
+  /** True while the next line may be read straight from bytes. */
+  get plain(): boolean {
+    return (
+      this.comment !== null &&
+      this.fault === null &&
+      this.commaLines === 0 &&
+      this.layout !== null &&
+      isPlainOrder(this.layout)
+    );
+  }
+
+  /** The comment line. */
+  takeComment(line: TextLine): void {
+    this.comment = line.text;
+    this.extended = hasProperties(line.text);
+    if (!this.extended && !line.text.includes("=")) {
+      this.commentLikeAtom = looksLikeAtom(line.text, PLAIN_LAYOUT);
+      return;
+    }
+    const parsed = parseExtendedComment(line.text);
+    if ("fault" in parsed) {
+      if (!this.extended) return;
+      const message = `The comment line announces Properties but does not parse: ${parsed.fault.reason}.`;
+      this.#refuseLayout(line, "X36", message, parsed.fault.column);
+      return;
+    }
+    this.keys = parsed.keys;
+    if (!this.extended) return;
+    this.oddities = parsed.oddities;
+    const properties = parsed.keys.get("Properties");
+    const layout = properties ? parseProperties(properties.text) : { reason: "it cannot be found" };
+    if ("reason" in layout) this.#refuseLayout(line, "X31", `Properties cannot be used: ${layout.reason}.`);
+    else {
+      this.layout = layout;
+      this.extra = (layout.columns ?? 4) - 4;
+    }
+  }
+
+  #refuseLayout(line: TextLine, code: string, message: string, column?: number): void {
+    this.layout = null;
+    const hint = "Correct the comment line, or leave Properties out for plain element, x, y, z.";
+    const found = line.text.slice(0, 200);
+    this.fault = { code, reason: "unreadable", message, hint, found, column, line: line.number };
+  }
+
+  /**
+   * The next atom line.
+   *
+   * @returns false where it is none: blank, text, the count of the next frame
+   */
+  takeAtom(line: TextLine): boolean {
+    if (this.layout === null) {
+      // Nothing is known of the columns: only keep in step.
+      if (!/\S[ \t]+\S/.test(line.text)) return false;
+      this.read += 1;
+      return true;
+    }
+    const result = readAtomLine(line.text, this.layout, this.positions, 3 * this.read);
+    if (result.kind === "other") return false;
+    if (result.kind === "fault") this.#note({ ...result.fault, line: line.number, atom: this.read + 1 });
+    else this.#put(result.atom, line);
+    this.read += 1;
+    return true;
+  }
+
+  #note(fault: BuilderFault): void {
+    this.fault ??= fault;
+  }
+
+  #put(atom: ReadAtom, line: TextLine): void {
+    const k = this.read;
+    this.elements[k] = atom.z;
+    if (atom.isotope !== 0) {
+      this.isotopes ??= new Uint16Array(this.count);
+      this.isotopes[k] = atom.isotope;
+    }
+    if (atom.label !== null) {
+      this.labels ??= new Array<string | null>(this.count).fill(null);
+      this.labels[k] = atom.label;
+    }
+    if (atom.dummy) this.dummies += 1;
+    if (atom.byNumber && this.layout === PLAIN_LAYOUT) this.numbersForSymbols ||= line.number;
+    if (atom.caret) this.carets ||= line.number;
+    if (atom.substituted) this.substitutions ||= line.number;
+    this.#checkCommas(atom, line);
+    if (this.extra < atom.extra) this.extra = atom.extra;
+  }
+
+  /** Commas separate in every line or in none. */
+  #checkCommas(atom: ReadAtom, line: TextLine): void {
+    if (atom.commas !== this.commaLines > 0 && this.read > 0) {
+      this.#note({
+        code: "X21",
+        reason: "unreadable",
+        message: "Commas separate the columns in some lines of the frame only.",
+        hint: "Write all lines the same way.",
+        found: line.text.slice(0, 200),
+        line: line.number,
+        atom: this.read + 1,
+      });
+    }
+    if (atom.commas) this.commaLines ||= line.number;
+  }
+
+  /** Per-atom columns beyond element and position: named by Properties, or only counted. */
+  extraColumns(): readonly ExtraColumn[] {
+    if (this.layout === null) return [];
+    if (this.layout !== PLAIN_LAYOUT) return this.layout.extra;
+    return Array.from({ length: Math.max(0, this.extra) }, () => ({ name: null, type: "R", count: 1 }));
+  }
+}
