@@ -11,7 +11,7 @@ import type { EnsembleRow } from "~/lib/views";
 
 /** What the action of the series page answers. */
 export interface ActAnswer {
-  ok: boolean;
+  ok?: boolean;
   /** What went wrong, for people. */
   message?: string;
   /** Of a series that was made. */

@@ -37,7 +37,9 @@ export function EnsembleTable({
     <Table aria-label="Ensembles" className="max-sm:table-fixed">
       <thead>
         <tr>
-          <Th {...head("name")}>Ensemble</Th>
+          <Th {...head("name")} className="max-sm:pl-0">
+            Ensemble
+          </Th>
           {showSeries ? (
             <Th {...head("series")} className={MID}>
               Series
@@ -55,10 +57,10 @@ export function EnsembleTable({
           <Th {...head("distinct")} align="right" className={WIDE}>
             Distinct
           </Th>
-          <Th {...head("strip")} unit="shares at 298.15 K" className="max-sm:w-30">
+          <Th {...head("strip")} unit="shares at 298.15 K" className="max-sm:w-29">
             Depth strip
           </Th>
-          <Th {...head("lowest")} align="right" unit="%" className="max-sm:w-14">
+          <Th {...head("lowest")} align="right" unit="%" className="max-sm:w-12">
             Lowest
           </Th>
           <Th {...head("effective")} align="right" unit="number" className={`${WIDE} ${MID}`}>
@@ -71,7 +73,7 @@ export function EnsembleTable({
             Changed
           </Th>
           {acts ? (
-            <Th className="w-12 px-0 max-sm:w-11 max-sm:px-0">
+            <Th className="w-12 px-0 max-sm:w-9 max-sm:px-0">
               <span className="sr-only">Acts</span>
             </Th>
           ) : null}
@@ -100,7 +102,7 @@ function EnsembleLine({
   const sift = row.sift;
   return (
     <Tr className="hover:bg-sheet">
-      <Td tall wrap className="max-w-96">
+      <Td tall wrap className="max-w-96 max-sm:pl-0">
         <Link
           to={href("/ensembles/:id", { id: row.id })}
           className="font-medium break-words text-ink no-underline hover:underline"

@@ -90,7 +90,7 @@ export function Td({
   const height = tall ? "h-12 max-sm:h-16" : "h-row max-sm:h-11 pointer-coarse:h-11";
   return (
     <td
-      className={`px-3 max-sm:px-2 ${wrap ? "whitespace-normal" : "whitespace-nowrap"} ${height} ${ALIGN[align]} ${className}`}
+      className={`px-3 max-sm:px-2 ${wrap ? "py-2 whitespace-normal" : "whitespace-nowrap"} ${height} ${ALIGN[align]} ${className}`}
       {...rest}
     />
   );
