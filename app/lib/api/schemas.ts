@@ -29,6 +29,15 @@ function optional<Schema extends z.ZodType>(schema: Schema) {
     .optional();
 }
 
+/** How openapi.json shows what travels as text: the shape that a caller means. */
+function shownAs(shape: Record<string, unknown>, description: string) {
+  const override = ({ jsonSchema }: { jsonSchema: Record<string, unknown> }) => {
+    for (const key of Object.keys(jsonSchema)) delete jsonSchema[key];
+    Object.assign(jsonSchema, shape, { description });
+  };
+  return { description, override };
+}
+
 // --- what goes wrong ---------------------------------------------------------------------------
 
 export const problemSchema = z
@@ -101,7 +110,12 @@ export const uploadFieldsSchema = z
     energyKind: z.enum(ENERGY_KINDS).optional().meta({ description: "Default: electronic." }),
     energyTemperature: numberText(0.001, 100_000, "A temperature in K, such as 298.15.")
       .optional()
-      .meta({ description: "K; for energies that belong to one temperature." }),
+      .meta(
+        shownAs(
+          { type: "number", minimum: 0.001, maximum: 100_000 },
+          "K; for energies that belong to one temperature.",
+        ),
+      ),
   })
   .meta({ id: "UploadFields" });
 export type UploadFields = z.infer<typeof uploadFieldsSchema>;
@@ -211,13 +225,13 @@ export const ensembleListSchema = z
 export type EnsembleListAnswer = z.infer<typeof ensembleListSchema>;
 
 export const ensembleListQuerySchema = z.object({
-  series: optional(z.string().max(120)).meta({ description: "Name or id of a series." }),
+  series: optional(z.string().max(120)).meta(shownAs({ type: "string" }, "Name or id of a series.")),
   page: optional(
     z
       .string()
       .regex(/^[1-9]\d{0,5}$/, "A page number from 1.")
       .transform(Number),
-  ).meta({ description: "From 1; 50 ensembles a page." }),
+  ).meta(shownAs({ type: "integer", minimum: 1, default: 1 }, "From 1; 50 ensembles a page.")),
 });
 
 export const answersRequestSchema = z
@@ -306,21 +320,29 @@ export const siftSchema = z
   .meta({ id: "Sift" });
 
 export const siftQuerySchema = z.object({
-  wait: optional(numberText(0, 60, "Seconds from 0 to 60.")).meta({
-    description: "Seconds to hold the answer until the sift has ended, 0 to 60.",
-  }),
+  wait: optional(numberText(0, 60, "Seconds from 0 to 60.")).meta(
+    shownAs(
+      { type: "number", minimum: 0, maximum: 60, default: 0 },
+      "Seconds to hold the answer until the sift has ended.",
+    ),
+  ),
 });
 
 const temperature = optional(
   numberText(0.001, 100_000, "A temperature in K above zero, such as 298.15."),
-).meta({
-  description: `K; default ${STANDARD_TEMPERATURE_K}.`,
-});
-const weights = optional(z.enum(["auto", "copies", "degeneracy"])).meta({ description: "Default: auto." });
+).meta(shownAs({ type: "number", minimum: 0.001, maximum: 100_000, default: STANDARD_TEMPERATURE_K }, "K"));
+const weights = optional(z.enum(["auto", "copies", "degeneracy"])).meta(
+  shownAs(
+    { type: "string", enum: ["auto", "copies", "degeneracy"], default: "auto" },
+    "auto takes copies for energies without the symmetry number, degeneracy for free energies.",
+  ),
+);
 
 export const populationsQuerySchema = z.object({
   temperature,
-  level: optional(z.string().max(200)).meta({ description: "Id or name; default: the level of the sift." }),
+  level: optional(z.string().max(200)).meta(
+    shownAs({ type: "string" }, "Id or name; default: the level of the sift."),
+  ),
   weights,
 });
 
