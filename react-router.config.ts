@@ -1,6 +1,8 @@
 import type { Config } from "@react-router/dev/config";
 
 export default {
+  // Tests build into a folder of their own, so that a server that runs keeps its files.
+  buildDirectory: process.env.BUILD_DIRECTORY || "build",
   ssr: true,
   routeDiscovery: { mode: "initial" },
   // The root middleware checks the origin itself, against APP_ORIGIN and for resource routes too;

@@ -13,7 +13,7 @@ import { nonceContext, requestIdContext } from "./context.ts";
 import { log } from "./services/log.server.ts";
 
 // What the start script needs of the application comes with the server build, so that both share one of everything.
-export { application } from "./services/application.server.ts";
+export { application } from "./application.server.ts";
 
 export const streamTimeout = 5_000;
 

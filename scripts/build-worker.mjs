@@ -9,7 +9,7 @@ export async function buildWorker() {
   await build({
     absWorkingDir: root,
     entryPoints: { "compute.worker": "app/workers/compute.worker.ts" },
-    outdir: ".worker",
+    outdir: process.env.WORKER_DIRECTORY || ".worker",
     outExtension: { ".js": ".mjs" },
     bundle: true,
     platform: "node",

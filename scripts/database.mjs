@@ -27,6 +27,7 @@ import {
   freePort,
   isAlive,
   pause,
+  portIsFree,
   ROOT,
   run,
   StartError,
@@ -49,6 +50,9 @@ const DURABLE = [
   "--innodb-doublewrite=1",
   "--innodb-log-file-size=128M",
 ];
+
+const LOOK_MS = 5_000;
+const MISSED_LOOKS = 3;
 
 function placesIn(folder) {
   return {
@@ -224,9 +228,12 @@ async function startServer(places, { durable, broad }) {
     const { uid, gid } = statSync(places.run);
     chownSync(places.init, uid, gid);
   }
+  const before = readState(places)?.port;
   for (let attempt = 0; attempt < 3; attempt++) {
-    // Between asking for a free port and listening somebody else may take it, hence the attempts.
-    const port = await freePort();
+    // The port of last time if it can be had, for whoever remembers it; between asking for a free one and listening
+    // somebody else may take it, hence the attempts.
+    const keep = attempt === 0 && before && (await portIsFree(before, "127.0.0.1"));
+    const port = keep ? before : await freePort();
     const launched = launch(places, { port, user, durable });
     if (await waitForGreeting(port, launched)) {
       const state = { port, password, pid: launched.pid };
@@ -305,7 +312,29 @@ export async function openDatabase({
   });
   return {
     url: urlOf(state),
-    pid: state.pid,
+    /** Starts the server again when it has been gone for a while, on the port that the application knows. */
+    keepAlive(log) {
+      let missed = 0;
+      let busy = false;
+      const look = async () => {
+        if (busy) return;
+        missed = serverPid(places) === null ? missed + 1 : 0;
+        if (missed < MISSED_LOOKS) return;
+        busy = true;
+        try {
+          log.warn("the database has gone; starting it again");
+          await withLock(places, async () => {
+            if (serverPid(places) === null) await startServer(places, { durable, broad });
+          });
+        } catch (error) {
+          log.error({ err: error }, "the database could not be started again");
+        }
+        busy = false;
+      };
+      const watch = setInterval(look, LOOK_MS);
+      watch.unref();
+      return watch;
+    },
     async close() {
       await withLock(places, async () => {
         rmSync(use, { force: true });

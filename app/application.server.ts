@@ -1,7 +1,11 @@
-import { env } from "../env.server.ts";
-import { DomainError } from "../lib/errors.ts";
-import { boot, shutDown } from "./boot.server.ts";
-import { log } from "./log.server.ts";
+import { createRequestHandler, RouterContextProvider, type ServerBuild } from "react-router";
+import { addressContext } from "./context.ts";
+import { env } from "./env.server.ts";
+import { DomainError } from "./lib/errors.ts";
+import { securityHeaders } from "./middleware/security-headers.server.ts";
+import { boot, shutDown } from "./services/boot.server.ts";
+import { shutDownJobs } from "./services/jobs/shutdown.server.ts";
+import { log } from "./services/log.server.ts";
 
 /** Calls that carry files; their own readers count the bytes. Everything else is a small form or a small JSON. */
 const UPLOADS = /^\/+(files\/upload|api\/v1\/ensembles(\/[^/]+\/(files|columns))?)\/?(\.data)?$/i;
@@ -31,5 +35,24 @@ export function clientAddress(peer: string, forwarded: string | undefined, trust
   return /^[0-9a-f.:]{2,45}$/i.test(entry) ? entry : peer;
 }
 
-/** What the process around the server build needs of it. */
-export const application = { boot, shutDown, env, log, bodyLimit, bodyTooLarge, clientAddress };
+function makeContext(address: string): RouterContextProvider {
+  const context = new RouterContextProvider();
+  context.set(addressContext, address);
+  return context;
+}
+
+/** What the process around the server build (`scripts/lib/serve.mjs`) needs of the application. */
+export const application = {
+  boot,
+  endJobs: shutDownJobs,
+  shutDown,
+  env,
+  log,
+  bodyLimit,
+  bodyTooLarge,
+  clientAddress,
+  makeContext,
+  makeHandler: (build: ServerBuild, mode: string) => createRequestHandler(build, mode),
+  /** For what the router does not answer: built assets, addresses that cannot be read. */
+  plainHeaders: () => securityHeaders({ nonce: "", secure: env().secure }),
+};

@@ -1,0 +1,57 @@
+import { existsSync } from "node:fs";
+import path from "node:path";
+import { openDatabase } from "../database.mjs";
+import { needPackages } from "./packages.mjs";
+import { ROOT, StartError } from "./processes.mjs";
+import { localSecrets } from "./secrets.mjs";
+
+const [major, minor] = process.versions.node.split(".").map(Number);
+
+/** Settings from `.env`, where there is one; the environment itself wins. */
+export function loadSettings() {
+  if (major < 20 || (major === 20 && minor < 12)) {
+    throw new StartError(`Node.js 20.12 or later is needed; this is ${process.versions.node}.`);
+  }
+  process.chdir(ROOT);
+  const file = path.join(ROOT, ".env");
+  if (existsSync(file)) process.loadEnvFile(file);
+}
+
+export function dataFolder() {
+  return path.resolve(ROOT, process.env.DATA_DIRECTORY || ".data");
+}
+
+/**
+ * Checks the settings with the application's own rules, before anything is installed, started or built for them.
+ * Secrets that a loopback instance keeps itself are filled in.
+ */
+async function checkSettings() {
+  const { tsImport } = await import("tsx/esm/api");
+  const { isLoopback, readEnv } = await tsImport("../../app/env.server.ts", import.meta.url);
+  const origin = process.env.APP_ORIGIN || "http://127.0.0.1";
+  if (process.env.NODE_ENV !== "production" || isLoopback(origin)) {
+    const secrets = localSecrets(dataFolder());
+    process.env.SESSION_SECRET ||= secrets.sessionSecret;
+    process.env.DEMO_PASSWORD ||= secrets.demoPassword;
+  }
+  process.env.DATA_DIRECTORY = dataFolder();
+  return readEnv({
+    ...process.env,
+    DATABASE_URL: process.env.DATABASE_URL || "mysql://not-yet@127.0.0.1/lowlying",
+  });
+}
+
+/**
+ * Everything that the application stands on: packages, settings, database.
+ *
+ * @returns the database, or null where DATABASE_URL names one of somebody else's
+ */
+export async function prepare(say) {
+  const own = !process.env.DATABASE_URL;
+  await needPackages(say);
+  await checkSettings();
+  if (!own) return null;
+  const database = await openDatabase({ folder: dataFolder(), say });
+  process.env.DATABASE_URL = database.url;
+  return database;
+}

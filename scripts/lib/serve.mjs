@@ -1,0 +1,218 @@
+// The server around the application: node:http, the built assets, and requests and responses carried over to the
+// router's handler. It exists for what the router's own server does not do: our headers on assets, bodies read to
+// their end on refusals, time limits on senders, and a shutdown that finishes what it began.
+import { createServer } from "node:http";
+import { pipeline, Readable } from "node:stream";
+import { loadStaticFiles, sendStatic } from "./static-files.mjs";
+
+/** Most bytes and longest time that an answered request may still send before its connection is cut. */
+const DRAIN_BYTES = 2 * 2 ** 30;
+const DRAIN_MS = 120_000;
+const HEADERS_MS = 15_000;
+const SMALL_BODY_MS = 30_000;
+const REQUEST_MS = 30 * 60_000;
+const KEEP_ALIVE_MS = 20_000;
+/** A sender of files must move at least one chunk in this time. */
+const UPLOAD_IDLE_MS = 60_000;
+
+const SENDS_NOTHING = new Set(["GET", "HEAD"]);
+const METHODS = new Set(["GET", "HEAD", "POST", "PUT", "PATCH", "DELETE", "OPTIONS"]);
+
+/** Chunks of a body, counted. Leaving early must not cut the connection: the answer still goes over it. */
+async function* counted(incoming, limit, tooLarge) {
+  let bytes = 0;
+  for await (const chunk of incoming.iterator({ destroyOnReturn: false })) {
+    bytes += chunk.length;
+    if (limit !== null && bytes > limit) throw tooLarge(limit);
+    yield chunk;
+  }
+}
+
+function headersOf(incoming) {
+  const headers = new Headers();
+  const raw = incoming.rawHeaders;
+  for (let i = 0; i + 1 < raw.length; i += 2) {
+    // HTTP/2 style names never reach an HTTP/1.1 handler.
+    if (!raw[i].startsWith(":")) headers.append(raw[i], raw[i + 1]);
+  }
+  return headers;
+}
+
+/** The request as the router takes it. Its address uses the host only to be whole; nothing is decided by it. */
+function requestOf(incoming, signal, application) {
+  const url = new URL(`http://host.invalid${incoming.url}`);
+  const host = incoming.headers.host ?? "";
+  if (/^[a-z0-9.-]+(:\d+)?$|^\[[0-9a-f:]+\](:\d+)?$/i.test(host)) url.host = host;
+  const init = { method: incoming.method, headers: headersOf(incoming), signal };
+  if (!SENDS_NOTHING.has(incoming.method)) {
+    const limit = application.bodyLimit(url.pathname);
+    init.body = ReadableStream.from(counted(incoming, limit, application.bodyTooLarge));
+    init.duplex = "half";
+  }
+  return new Request(url, init);
+}
+
+/**
+ * Reads what is left of a body. An answer sent over it would reach the sender only after a reset, if at all.
+ */
+function drain(incoming) {
+  if (incoming.complete || incoming.destroyed) return Promise.resolve();
+  return new Promise((resolve) => {
+    let bytes = 0;
+    const timer = setTimeout(() => incoming.destroy(), DRAIN_MS);
+    const done = () => {
+      clearTimeout(timer);
+      resolve();
+    };
+    incoming.on("data", (chunk) => {
+      bytes += chunk.length;
+      if (bytes > DRAIN_BYTES) incoming.destroy();
+    });
+    for (const event of ["end", "close", "error"]) incoming.once(event, done);
+    incoming.resume();
+  });
+}
+
+function writeHead(response, answer, closing) {
+  const headers = {};
+  answer.headers.forEach((value, name) => {
+    if (name !== "set-cookie") headers[name] = value;
+  });
+  const cookies = answer.headers.getSetCookie();
+  if (cookies.length > 0) headers["set-cookie"] = cookies;
+  if (closing) headers.connection = "close";
+  response.writeHead(answer.status, headers);
+}
+
+function sendBody(answer, response) {
+  if (answer.body === null) {
+    response.end();
+    return Promise.resolve();
+  }
+  return new Promise((resolve) => {
+    // An error here means that the caller left or the source broke: the connection is cut, so that nobody takes half
+    // an answer for a whole one.
+    pipeline(Readable.fromWeb(answer.body), response, () => resolve());
+  });
+}
+
+/** Cuts senders that hold a connection without sending: small bodies in all, uploads between two chunks. */
+function watchSender(incoming, application) {
+  if (SENDS_NOTHING.has(incoming.method)) return;
+  const small = application.bodyLimit(incoming.url.split("?", 1)[0]) !== null;
+  const cut = () => {
+    if (!incoming.complete) incoming.destroy();
+  };
+  if (small) {
+    const timer = setTimeout(cut, SMALL_BODY_MS);
+    for (const event of ["end", "close"]) incoming.once(event, () => clearTimeout(timer));
+    return;
+  }
+  incoming.setTimeout(UPLOAD_IDLE_MS, cut);
+  incoming.once("end", () => incoming.setTimeout(0));
+}
+
+function plainAnswer(response, status, text, headers) {
+  response.writeHead(status, { ...headers, "content-type": "text/plain; charset=utf-8" }).end(`${text}\n`);
+}
+
+/** An address that the router could not decode would fail before any middleware runs. */
+function isReadable(address) {
+  if (!address.startsWith("/")) return false;
+  try {
+    decodeURI(address.split("?", 1)[0]);
+    return true;
+  } catch {
+    return false;
+  }
+}
+
+/**
+ * Makes the server of the application.
+ *
+ * @param options.application what the build exports for its surroundings
+ * @param options.handle takes a Request and a context, gives a Response
+ * @param options.staticFolder built assets, or null where another handler sends them
+ * @param options.before an optional handler that sees every request first (development)
+ */
+export function makeServer({ application, handle, staticFolder, before }) {
+  const { log, env } = application;
+  const files = staticFolder === null ? new Map() : loadStaticFiles(staticFolder);
+  const headers = application.plainHeaders();
+  const state = { closing: false, open: 0, idle: null };
+
+  async function answer(incoming, response) {
+    if (!METHODS.has(incoming.method))
+      return plainAnswer(response, 405, "This method is not known here.", headers);
+    if (!isReadable(incoming.url)) return plainAnswer(response, 400, "This address cannot be read.", headers);
+    if (await sendStatic(files, incoming, response, headers)) return;
+    watchSender(incoming, application);
+    const leaving = new AbortController();
+    response.once("close", () => {
+      if (!response.writableFinished) leaving.abort();
+    });
+    const address = application.clientAddress(
+      incoming.socket.remoteAddress ?? "unknown",
+      incoming.headers["x-forwarded-for"],
+      env().TRUST_PROXY,
+    );
+    const given = await handle(
+      requestOf(incoming, leaving.signal, application),
+      application.makeContext(address),
+    );
+    await drain(incoming);
+    if (response.destroyed) return void given.body?.cancel();
+    writeHead(response, given, state.closing);
+    await sendBody(given, response);
+  }
+
+  const server = createServer({ keepAliveTimeout: KEEP_ALIVE_MS }, (incoming, response) => {
+    state.open += 1;
+    response.once("close", () => {
+      state.open -= 1;
+      if (state.open === 0) state.idle?.();
+    });
+    // Errors of a connection that was cut come here too; there is nobody left to tell.
+    incoming.on("error", () => {});
+    const run = () =>
+      answer(incoming, response).catch((error) => {
+        log.error({ err: error }, "request failed outside the application");
+        if (response.headersSent) response.destroy();
+        else plainAnswer(response, 500, "Something went wrong on the server. Try again.", headers);
+      });
+    if (before) before(incoming, response, run);
+    else run();
+  });
+  server.headersTimeout = HEADERS_MS;
+  server.requestTimeout = REQUEST_MS;
+
+  return {
+    server,
+    listen(port, host) {
+      return new Promise((resolve, reject) => {
+        server.once("error", reject);
+        server.listen(port, host, () => {
+          server.off("error", reject);
+          resolve();
+        });
+      });
+    },
+    /** Takes no further connection, finishes the requests that are open, for at most `patienceMs`. */
+    async close(patienceMs) {
+      state.closing = true;
+      server.close();
+      server.closeIdleConnections();
+      let timer;
+      const late = new Promise((resolve) => {
+        timer = setTimeout(resolve, patienceMs);
+      });
+      const quiet = new Promise((resolve) => {
+        state.idle = resolve;
+        if (state.open === 0) resolve();
+      });
+      await Promise.race([quiet, late]);
+      clearTimeout(timer);
+      server.closeAllConnections();
+    },
+  };
+}

@@ -1,0 +1,83 @@
+// `npm start`: from a fresh clone to a signed-in page. Installs, starts, migrates, builds, seeds what is missing, then
+// serves in this process until it is told to stop.
+import { readFileSync } from "node:fs";
+import path from "node:path";
+import { pathToFileURL } from "node:url";
+import { buildPlaces, needBuild } from "./lib/build.mjs";
+import { loadSettings, prepare } from "./lib/prepare.mjs";
+import { endRunning, portIsFree, StartError } from "./lib/processes.mjs";
+import { makeServer } from "./lib/serve.mjs";
+
+const say = (text) => console.log(text);
+/** For requests that are open when the process is told to stop. */
+const PATIENCE_MS = 20_000;
+const EXPECTED = new Set(["EnvError", "DatabaseSettingsError"]);
+
+const state = { stopping: null, database: null, application: null, http: null, watch: null };
+
+/** Ends all that was started, in the opposite order. A second signal finds the same shutdown under way. */
+function stop(code) {
+  state.stopping ??= (async () => {
+    endRunning();
+    clearInterval(state.watch);
+    // Both at once: waiting calls are answered by the shutdown of the jobs, and only then finished.
+    const closing = state.http?.close(PATIENCE_MS);
+    try {
+      await Promise.all([closing, state.application?.endJobs()]);
+      await state.application?.shutDown();
+      await state.database?.close();
+    } catch (error) {
+      console.error(error);
+      process.exit(1);
+    }
+    process.exit(code);
+  })();
+  return state.stopping;
+}
+
+async function needPort() {
+  const port = Number(process.env.PORT || 3000);
+  const host = process.env.HOST || "127.0.0.1";
+  if (Number.isInteger(port) && port > 0 && port < 65536 && !(await portIsFree(port, host))) {
+    throw new StartError(
+      `Port ${port} on ${host} is taken, perhaps by another Lowlying. Stop that, or choose another port: PORT=${port + 1} npm start`,
+    );
+  }
+}
+
+async function main() {
+  loadSettings();
+  process.env.NODE_ENV ||= "production";
+  await needPort();
+  state.database = await prepare(say);
+  const places = buildPlaces(process.env.BUILD_FOLDER);
+  await needBuild(places, say);
+  process.env.WORKER_DIRECTORY = places.worker;
+  const build = await import(pathToFileURL(path.join(places.build, "server/index.js")).href);
+  const { application } = build.entry.module;
+  if (state.stopping) return;
+  const { demo } = await application.boot();
+  state.application = application;
+  const { HOST, PORT, APP_ORIGIN } = application.env();
+  state.http = makeServer({
+    application,
+    handle: application.makeHandler(build, process.env.NODE_ENV),
+    staticFolder: path.join(places.build, "client"),
+  });
+  await state.http.listen(PORT, HOST);
+  state.watch = state.database?.keepAlive(application.log);
+  const { version } = JSON.parse(readFileSync("package.json", "utf8"));
+  say(`Lowlying ${version} is ready. Ctrl-C stops it.`);
+  if (demo) say(`Demo sign-in: ${demo.email} / ${demo.password}`);
+  say(`Lowlying: ${APP_ORIGIN}`);
+}
+
+for (const signal of ["SIGINT", "SIGTERM"]) process.on(signal, () => stop(0));
+process.on("SIGHUP", () => stop(0));
+
+main().catch(async (error) => {
+  if (!state.stopping) {
+    console.error(error instanceof StartError || EXPECTED.has(error.name) ? error.message : error);
+  }
+  await stop(state.stopping ? 0 : 1);
+});
