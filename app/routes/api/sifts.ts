@@ -4,10 +4,11 @@ import { createSift } from "~/services/sifts/create-sift.server";
 import { answerCall, json, readJson } from "./answer-call.server";
 
 const answer = answerCall({
-  async POST({ actor, params, request }) {
+  async POST({ actor, params, request, url }) {
     const { ensembleId } = await accessEnsemble(actor, "compute", params.id ?? "");
     const sift = await createSift({ actor, ensembleId, request: await readJson(request, siftRequestSchema) });
-    return json(sift, { status: 202, location: `/api/v1/sifts/${sift.id}` });
+    const base = url.pathname.startsWith("/files/") ? "/files" : "/api/v1";
+    return json(sift, { status: 202, location: `${base}/sifts/${sift.id}` });
   },
 });
 
