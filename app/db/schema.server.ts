@@ -212,6 +212,8 @@ export const ensembles = mysqlTable(
     bonds: bytesColumn().notNull(),
     /** Labels of the atoms as the file writes them, where they differ from the element. */
     atomLabels: anyJson(),
+    /** Charge, multiplicity and configuration of the group: what a further batch is compared with. */
+    identity: anyJson(),
     chirality: varchar({ length: 10, enum: ["achiral", "chiral", "unsure"] }).notNull(),
     /** Words on how the chirality was decided, tested centres and the like. */
     chiralityNote: varchar({ length: 500 }).notNull().default(""),

@@ -1,0 +1,1 @@
+ALTER TABLE `ensembles` ADD `identity` json;
