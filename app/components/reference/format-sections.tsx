@@ -1,0 +1,274 @@
+import type { ReactNode } from "react";
+import type { ReferenceSection } from "~/components/layout/reference-page";
+import { Badge, type BadgeTone } from "~/components/ui/badge";
+import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { formatBytes, formatCount, trimmed } from "~/lib/format";
+
+/** Limits of this server, as its settings have them. */
+export interface FormatLimits {
+  fileBytes: number;
+  frames: number;
+  atoms: number;
+  teamBytes: number;
+  origin: string;
+}
+
+/** What the readers accept today, section by section. */
+export function formatSections(limits: FormatLimits): ReferenceSection[] {
+  return [
+    { id: "files", title: "Files and limits", body: <Files limits={limits} /> },
+    { id: "xyz", title: "XYZ and extended XYZ", body: <Xyz /> },
+    { id: "energies", title: "Energies", body: <Energies /> },
+    { id: "held", title: "What is held, and why", body: <Held /> },
+    { id: "rejected", title: "What is rejected", body: <Rejected limits={limits} /> },
+    { id: "programs", title: "From a program", body: <Programs limits={limits} /> },
+  ];
+}
+
+function Files({ limits }: { limits: FormatLimits }) {
+  return (
+    <>
+      <p>
+        XYZ and extended XYZ, plain or gzip. The content decides, the name only hints. Text may be UTF-8 or
+        UTF-16 with a mark, with any line ends.
+      </p>
+      <ul>
+        <li>{formatBytes(limits.fileBytes)} unpacked a file</li>
+        <li>
+          {formatCount(limits.frames)} frames a file, {formatCount(limits.atoms)} atoms a frame
+        </li>
+        <li>{trimmed(limits.teamBytes / 1e9, 1)} GB of original bytes a team</li>
+      </ul>
+      <p>
+        The original bytes are kept under their SHA-256 and given back unchanged. The same bytes with the same
+        answers make no second ensemble. Several files may become one ensemble: frames are numbered on from
+        file to file.
+      </p>
+      <p>
+        Every frame ends <Badge>accepted</Badge>, <Badge tone="remark">with a remark</Badge> or{" "}
+        <Badge tone="held">held</Badge>. Nothing is dropped, repaired or guessed without saying so; each
+        message names file, line and frame.
+      </p>
+    </>
+  );
+}
+
+interface RuleRow {
+  input: ReactNode;
+  tone: BadgeTone;
+  does: string;
+  note?: ReactNode;
+}
+
+function Rules({ label, rows }: { label: string; rows: readonly RuleRow[] }) {
+  return (
+    <Table aria-label={label} className="text-sm">
+      <thead>
+        <tr>
+          <Th>What stands in the file</Th>
+          <Th>What happens</Th>
+        </tr>
+      </thead>
+      <tbody>
+        {rows.map((row, i) => (
+          <Tr key={i}>
+            <Td wrap>
+              {row.input}
+              {row.note ? <span className="block text-xs text-ink-3">{row.note}</span> : null}
+            </Td>
+            <Td className="align-top">
+              <span className="flex py-2">
+                <Badge tone={row.tone}>{row.does}</Badge>
+              </span>
+            </Td>
+          </Tr>
+        ))}
+      </tbody>
+    </Table>
+  );
+}
+
+const ACCEPTED = { tone: "plain", does: "accepted" } as const;
+const REMARK = { tone: "remark", does: "remark" } as const;
+const HELD = { tone: "held", does: "held" } as const;
+const ASKED = { tone: "ask", does: "asked" } as const;
+const REJECTED = { tone: "danger", does: "rejected" } as const;
+
+function Xyz() {
+  return (
+    <>
+      <p>
+        A frame is a line with the atom count, a comment line, and one line <code>El x y z</code> an atom, in
+        Å.
+      </p>
+      <Rules
+        label="XYZ"
+        rows={[
+          { input: "Symbols in any case, labels such as C1 or H_12, atomic numbers, D and T", ...ACCEPTED },
+          {
+            input: "Extended comment line with Properties in any order of columns, quoted values, lists",
+            ...ACCEPTED,
+          },
+          { input: "Exponents with e, E, d or D", ...ACCEPTED },
+          {
+            input: "Blank lines between frames, text after the count, further lines after a frame",
+            note: "kept as a note, never read as an energy",
+            ...REMARK,
+          },
+          { input: "Dummy atoms: X, Bq, *", note: "kept, left out of bonds, RMSD and masses", ...REMARK },
+          { input: "Further columns without Properties", ...REMARK },
+          {
+            input: "A lattice",
+            note: "ignored; bonds that close only across the cell hold the frame",
+            ...REMARK,
+          },
+          { input: "U+2212 as minus, no-break spaces in numbers", ...REMARK },
+          { input: "An unknown symbol, a count of 0, atoms closer than 0.5 Å", ...HELD },
+          { input: "Fewer than four columns, columns run together, nan, stars", ...HELD },
+          {
+            input: "Decimal commas, a leading index column, symbols with two readings (CA, CD, HG)",
+            ...HELD,
+          },
+          { input: "Coordinates that look like bohr", ...HELD },
+          {
+            input: "More or fewer atom lines than the count says",
+            note: "the frame and the lines up to the next whole one",
+            ...HELD,
+          },
+        ]}
+      />
+      <p>
+        A number is a number only when the whole word is one: <code>1,234</code> is not read as 1,{" "}
+        <code>5x</code> not as 5.
+      </p>
+    </>
+  );
+}
+
+function Energies() {
+  return (
+    <>
+      <p>
+        Which number is the energy, and in which unit, is proposed and confirmed once for the whole upload;
+        nothing is computed before. Beside each choice stands the spread it would mean.
+      </p>
+      <Rules
+        label="Energies"
+        rows={[
+          { input: "A labelled number (energy = −1.2), a lone number, keys energy or free_energy", ...ASKED },
+          {
+            input: "A unit beside the number: hartree, Eh, a.u., eV, meV, kcal/mol, kJ/mol, cm-1, K",
+            note: "counts as answered",
+            ...ACCEPTED,
+          },
+          {
+            input: "No unit",
+            note: "proposed where the total fits the sum of the free atoms within 1 %",
+            ...ASKED,
+          },
+          {
+            input: "Dates, times, versions, conformer numbers, labels",
+            note: "never taken for energies",
+            ...ACCEPTED,
+          },
+          {
+            input: "No energy in some frames",
+            note: "they get no population; never 0, never the mean",
+            ...REMARK,
+          },
+          { input: "Too few digits, one frame far off, all frames equal", ...REMARK },
+        ]}
+      />
+    </>
+  );
+}
+
+function Held() {
+  return (
+    <>
+      <p>
+        A held frame is kept, listed with its reason, and left out of every computation until somebody
+        releases it. The logbook says who did, and why.
+      </p>
+      <Rules
+        label="Held frames"
+        rows={[
+          {
+            input: "Another composition, charge, or order of the atoms",
+            note: "the largest group is the ensemble",
+            ...HELD,
+          },
+          {
+            input: "Another species: a bond formed or broke",
+            note: "named by its atoms; cannot be released into this ensemble",
+            ...HELD,
+          },
+          {
+            input: "Another configuration: a stereocentre or double bond inverted",
+            note: "cannot be released into this ensemble",
+            ...HELD,
+          },
+          { input: "An open question about its energy", note: "released by the answer", ...HELD },
+          { input: "A broken or incomplete frame", note: "its lines stay in the original file", ...HELD },
+          { input: "By hand, with a reason", ...HELD },
+        ]}
+      />
+    </>
+  );
+}
+
+function Rejected({ limits }: { limits: FormatLimits }) {
+  return (
+    <>
+      <p>Of a rejected file nothing is stored.</p>
+      <Rules
+        label="Rejected files"
+        rows={[
+          { input: "An empty file, or one whose first line is no atom count", ...REJECTED },
+          {
+            input: "Binary files, pictures, spreadsheets, PDF",
+            note: "the message says what it looks like",
+            ...REJECTED,
+          },
+          {
+            input: "Archives and other packings: tar, zip, bz2, xz, zst",
+            note: "send XYZ plain or as gzip",
+            ...REJECTED,
+          },
+          { input: "A gzip file that ends early or fails its checksum", ...REJECTED },
+          {
+            input: `More than ${formatBytes(limits.fileBytes)} unpacked, ${formatCount(limits.frames)} frames, ${formatCount(limits.atoms)} atoms, or a line over 1 MB`,
+            note: "reading stops there; the limit is named",
+            ...REJECTED,
+          },
+        ]}
+      />
+    </>
+  );
+}
+
+function Programs({ limits }: { limits: FormatLimits }) {
+  return (
+    <>
+      <p>
+        The same readers serve the API. A member makes a token on the team’s page of tokens; what is asked in
+        the browser comes with the call:
+      </p>
+      {/* biome-ignore lint/a11y/noNoninteractiveTabindex: it scrolls sideways, and keys must reach it */}
+      <pre tabIndex={0} className="overflow-x-auto rounded-sm bg-sunk px-4 py-3 text-xs">
+        <code>
+          {[
+            "curl --fail-with-body -H @lowlying-token.txt \\",
+            "  -F level=MMFF94 -F energyUnit=kcal/mol -F energyFrom=key:energy \\",
+            "  -F file=@ensemble.xyz.gz \\",
+            `  ${limits.origin}/api/v1/ensembles`,
+          ].join("\n")}
+        </code>
+      </pre>
+      <p>
+        Without <code>energyFrom</code> a lone candidate is taken and several become a question; without a
+        clear unit the call is refused with 422 and stores nothing. Sending the same file again is safe.
+      </p>
+    </>
+  );
+}
