@@ -18,7 +18,7 @@ describe("reading", () => {
 
   test("every name of the address is read", () => {
     const params = new URLSearchParams(
-      "v=1&sift=abcdefghij234567&T=310.5&w=2.5&sel=11,235,105&at=3,4,5,6&h=all&m=side&weights=degeneracy&sort=rmsd.down",
+      "v=1&sift=abcdefghij234567&T=310.5&w=2.5&sel=11,235,105&at=3,4,5,6&al=1,2,3&h=all&m=side&weights=degeneracy&sort=rmsd.down",
     );
     expect(readState(params)).toEqual({
       sift: "abcdefghij234567",
@@ -26,6 +26,7 @@ describe("reading", () => {
       windowKcal: 2.5,
       selected: [11, 235, 105],
       atoms: [2, 3, 4, 5],
+      align: [0, 1, 2],
       hydrogens: "all",
       mode: "side",
       weights: "degeneracy",
@@ -54,6 +55,7 @@ describe("reading", () => {
     "sift=ABCDEFGHIJ234567",
     "at=0",
     "at=x",
+    "al=1,2",
     "h=some",
     "m=",
     "weights=9",
@@ -102,6 +104,7 @@ describe("writing", () => {
       windowKcal: fc.option(fc.integer({ min: 1, max: 100000 }).map((centi) => centi / 100)),
       selected: fc.option(fc.uniqueArray(fc.integer({ min: 1, max: 50000 }), { maxLength: MAX_SELECTED })),
       atoms: fc.uniqueArray(fc.integer({ min: 0, max: 999 }), { maxLength: 4 }),
+      align: fc.option(fc.uniqueArray(fc.integer({ min: 0, max: 999 }), { minLength: 3, maxLength: 12 })),
       hydrogens: fc.constantFrom("none", "polar", "all"),
       mode: fc.constantFrom("overlay", "side", "one"),
       weights: fc.constantFrom("auto", "copies", "degeneracy"),

@@ -14,6 +14,8 @@ export interface WorkbenchState {
   selected: number[] | null;
   /** Picked atoms, counted from 0 here and from 1 in the address; up to four, each once. */
   atoms: number[];
+  /** Atoms that conformers are laid over each other on, from 0 here and from 1 in the address; null is all heavy atoms. */
+  align: number[] | null;
   hydrogens: HydrogenMode;
   mode: ViewMode;
   weights: WeightsChoice;
@@ -35,6 +37,8 @@ export const TEMPERATURE_RANGE_K = [100, 1000] as const;
 /** Longer selections would make addresses that mail programs break. */
 export const MAX_SELECTED = 50;
 export const MAX_PICKED = 4;
+/** Three atoms that are not on one line fix a position; more than these make no better one. */
+export const MAX_ALIGNED = 60;
 const MAX_WINDOW_KCAL = 1000;
 const VERSION = "1";
 
@@ -42,7 +46,7 @@ const ID = /^[a-z2-7]{16}$/;
 const NUMBER = /^\d{1,9}(\.\d{1,9})?$/;
 const SORT = /^([a-z][a-z-]{0,30})\.(up|down)$/;
 /** Names of the state in the address. Other parameters belong to somebody else and are kept. */
-const KEYS = ["v", "sift", "T", "w", "sel", "at", "h", "m", "weights", "sort"] as const;
+const KEYS = ["v", "sift", "T", "w", "sel", "at", "al", "h", "m", "weights", "sort"] as const;
 
 export function defaultState(): WorkbenchState {
   return {
@@ -51,6 +55,7 @@ export function defaultState(): WorkbenchState {
     windowKcal: DEFAULT_WINDOW_KCAL,
     selected: null,
     atoms: [],
+    align: null,
     hydrogens: "polar",
     mode: "overlay",
     weights: "auto",
@@ -77,6 +82,7 @@ export function readState(params: URLSearchParams): WorkbenchState {
         : (readNumber(params.get("w"), 1e-6, MAX_WINDOW_KCAL) ?? start.windowKcal),
     selected: params.has("sel") ? readCounts(params.get("sel"), MAX_SELECTED) : null,
     atoms: readCounts(params.get("at"), MAX_PICKED).map((atom) => atom - 1),
+    align: readAtoms(params.get("al")),
     hydrogens: oneOf(params.get("h"), ["none", "polar", "all"], start.hydrogens),
     mode: oneOf(params.get("m"), ["overlay", "side", "one"], start.mode),
     weights: oneOf(params.get("weights"), ["auto", "copies", "degeneracy"], start.weights),
@@ -106,6 +112,7 @@ export function writeState(state: WorkbenchState, others?: URLSearchParams): URL
         .map((atom) => atom + 1)
         .join(","),
     ]);
+  if (state.align !== null) pairs.push(["al", state.align.map((atom) => atom + 1).join(",")]);
   if (state.hydrogens !== start.hydrogens) pairs.push(["h", state.hydrogens]);
   if (state.mode !== start.mode) pairs.push(["m", state.mode]);
   if (state.weights !== start.weights) pairs.push(["weights", state.weights]);
@@ -143,6 +150,12 @@ function readCounts(text: string | null, most: number): number[] {
     if (/^[1-9]\d{0,7}$/.test(part)) found.add(Number(part));
   }
   return [...found];
+}
+
+/** Atoms to align on; fewer than three fix nothing and are taken as absent. */
+function readAtoms(text: string | null): number[] | null {
+  const atoms = readCounts(text, MAX_ALIGNED).map((atom) => atom - 1);
+  return atoms.length >= 3 ? atoms : null;
 }
 
 function oneOf<T extends string>(text: string | null, choices: readonly T[], fallback: T): T {

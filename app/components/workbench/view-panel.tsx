@@ -1,0 +1,205 @@
+import { useDeferredValue, useMemo } from "react";
+import { Button } from "~/components/ui/button";
+import { Note } from "~/components/ui/note";
+import { TextButton } from "~/components/ui/text-link";
+import { PicksList } from "~/components/viewer/picks-list";
+import { Viewer, type ViewerProps } from "~/components/viewer/viewer";
+import { useCoordinates } from "~/hooks/use-coordinates";
+import { perceiveBonds } from "~/lib/chem/bonds";
+import { formatCount, plural } from "~/lib/format";
+import { formatMeasure, measureKind, measureLabel, measureValue } from "~/lib/measure/measure";
+import { makeGraph } from "~/lib/structure";
+import type { EnsembleView, SiftView } from "~/lib/views";
+import { ConformerDistances, laidOver } from "~/lib/workbench/distances";
+import { frameSentence } from "~/lib/workbench/findings";
+import { frameName, MAX_COLOURED, type ShownFrame, viewPlan } from "~/lib/workbench/view-plan";
+import { useWorkbench } from "./workbench-context";
+
+/** More names than this make a caption longer than the picture is wide. */
+const NAMED_ATOMS = 4;
+
+/** The 3D view beside every section, with what is selected below it. */
+export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
+  const workbench = useWorkbench();
+  const { ensemble, rows, roles, selected, state, change, sift, coordinates, hovered } = workbench;
+  // Frames that are not kept are asked for by themselves, so that a wrong number in the address blocks nothing else.
+  const own = useCoordinates(ensemble.id, ensemble.atoms, selected);
+  const lit = useDeferredValue(hovered);
+  const shownRows = useDeferredValue(rows);
+  const alignedOn =
+    state.align === null
+      ? "aligned on heavy atoms"
+      : state.align.length <= NAMED_ATOMS
+        ? `aligned on ${measureLabel(ensemble.elements, state.align).replaceAll("\u2013", ", ")}`
+        : `aligned on ${formatCount(state.align.length)} atoms`;
+  const plan = useMemo(
+    () => viewPlan({ rows: shownRows, roles, held, selected, mode: state.mode, alignedOn }),
+    [shownRows, roles, held, selected, state.mode, alignedOn],
+  );
+  const positions = useMemo(
+    () => new Map([...coordinates.positions, ...own.positions]),
+    [coordinates.positions, own.positions],
+  );
+  const conformers = useMemo(
+    () => conformersOf(plan.frames, positions, { ensemble, sift, roles, held, lit }),
+    [plan.frames, positions, ensemble, sift, roles, held, lit],
+  );
+
+  const picked = useMemo(
+    () => state.atoms.filter((atom) => atom < ensemble.atoms),
+    [state.atoms, ensemble.atoms],
+  );
+  const kind = measureKind(picked);
+  const value = (frame: number) => {
+    const at = positions.get(frame);
+    return kind !== null && at ? formatMeasure(kind, measureValue(at, picked)) : null;
+  };
+  const label = kind === null ? null : measureLabel(ensemble.elements, picked);
+  const first = selected[0];
+  const firstValue = first === undefined ? null : value(first);
+  const populationOf = new Map(shownRows.map((row) => [row.frame, row.population]));
+  const over = selected.length === 2 && selected[1] !== undefined ? roles.get(selected[1]) : undefined;
+  const error = own.error ?? coordinates.error;
+
+  return (
+    <>
+      <Viewer
+        elements={ensemble.elements}
+        bonds={ensemble.bonds}
+        conformers={conformers}
+        alignOn={state.align}
+        picked={picked}
+        onPick={(atoms) => change({ atoms }, { replace: true })}
+        hydrogens={state.hydrogens}
+        mode={state.mode}
+        onMode={(mode) => change({ mode }, { replace: true })}
+        onHydrogens={(hydrogens) => change({ hydrogens }, { replace: true })}
+        caption={plan.caption}
+        measures={label !== null && firstValue !== null ? [{ label, text: firstValue }] : []}
+        title={ensemble.name}
+      >
+        <PicksList
+          picks={selected.map((frame) => {
+            const role = roles.get(frame);
+            return {
+              frame,
+              ...(role?.kind === "kept" && !held.has(frame) ? { name: role.name } : {}),
+              population: populationOf.get(frame) ?? null,
+              measure: value(frame),
+              held: held.has(frame),
+            };
+          })}
+          measureLabel={label}
+        />
+        <AlignChoice picked={picked} align={state.align} onAlign={(align) => change({ align })} />
+      </Viewer>
+      {error ? (
+        <Note tone="danger" className="mt-3">
+          {error.message}{" "}
+          <TextButton onClick={() => (own.error ? own : coordinates).retry()}>Try again</TextButton>
+        </Note>
+      ) : coordinates.missing > 0 && rows.length > 0 ? (
+        <p role="status" className="appear-late mt-2 text-xs text-ink-3">
+          {plural(coordinates.missing, "structure")} on the way
+        </p>
+      ) : plan.notDrawn > 0 ? (
+        <p className="mt-2 text-xs text-ink-3">
+          {plural(plan.notDrawn, "less populated conformer")} not drawn.
+        </p>
+      ) : null}
+      {over?.kind === "repeat" && over.repeats === first && selected[1] !== undefined ? (
+        <Note tone="mark" className="mt-4">
+          {frameSentence(selected[1], over)}
+          {over.mirror
+            ? ` The molecule counts as achiral, so both hands are equally likely: ${over.name} stands for the pair and counts twice.`
+            : ""}
+        </Note>
+      ) : null}
+    </>
+  );
+}
+
+/** Lays everything over the picked atoms, or over the heavy ones again. */
+function AlignChoice({
+  picked,
+  align,
+  onAlign,
+}: {
+  picked: readonly number[];
+  align: readonly number[] | null;
+  onAlign: (align: number[] | null) => void;
+}) {
+  const same =
+    align !== null && align.length === picked.length && align.every((atom) => picked.includes(atom));
+  const offer = picked.length >= 3 && !same;
+  if (!offer && align === null) return null;
+  return (
+    <div className="flex flex-wrap gap-2">
+      {offer ? (
+        <Button size="sm" onClick={() => onAlign([...picked])}>
+          Align on the picked atoms
+        </Button>
+      ) : null}
+      {align !== null ? (
+        <Button size="sm" onClick={() => onAlign(null)}>
+          Align on heavy atoms
+        </Button>
+      ) : null}
+    </div>
+  );
+}
+
+function conformersOf(
+  frames: readonly ShownFrame[],
+  positions: ReadonlyMap<number, Float64Array>,
+  around: {
+    ensemble: EnsembleView;
+    sift: SiftView | null;
+    roles: Parameters<typeof frameName>[1];
+    held: ReadonlySet<number>;
+    lit: number | null;
+  },
+): ViewerProps["conformers"] {
+  const first = frames[0] ? positions.get(frames[0].frame) : undefined;
+  const coloured = frames.filter((one) => one.selected).length;
+  return frames.flatMap((one) => {
+    const at = positions.get(one.frame);
+    if (!at) return [];
+    const over = one.laidOver && first ? laidOverFirst(around.ensemble, around.sift, first, at) : at;
+    return [
+      {
+        frame: one.frame,
+        name: frameName(one.frame, around.roles, around.held),
+        positions: over,
+        population: one.population,
+        selected: one.selected || (around.lit === one.frame && coloured < MAX_COLOURED),
+        ...(one.held
+          ? {
+              tone: "held" as const,
+              bonds: [...perceiveBonds(Uint8Array.from(around.ensemble.elements), at).bonds],
+            }
+          : {}),
+      },
+    ];
+  });
+}
+
+/** The second structure in the atom order, and the hand, in which the sift found it nearest to the first. */
+function laidOverFirst(
+  ensemble: EnsembleView,
+  sift: SiftView | null,
+  first: Float64Array,
+  second: Float64Array,
+): Float64Array {
+  if (sift === null) return second;
+  const graph = makeGraph(Uint8Array.from(ensemble.elements), ensemble.bonds);
+  const distances = new ConformerDistances(graph, {
+    atoms: sift.recipe.atoms,
+    symmetry: sift.recipe.symmetry,
+    mirror: sift.recipe.mirror === "merge",
+  });
+  distances.add(first);
+  distances.add(second);
+  const { distance, permutation } = distances.exchange(0, 1);
+  return laidOver(second, permutation, distance.mirror);
+}

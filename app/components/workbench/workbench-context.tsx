@@ -1,0 +1,235 @@
+import {
+  createContext,
+  type ReactNode,
+  useCallback,
+  useContext,
+  useDeferredValue,
+  useMemo,
+  useState,
+} from "react";
+import { type ChangeState, useAddressState } from "~/hooks/use-address-state";
+import { type Coordinates, useCoordinates } from "~/hooks/use-coordinates";
+import { type DistanceColumn, useDistances } from "~/hooks/use-distances";
+import type { SiftResult } from "~/lib/recipe/result";
+import { type DistinctPopulations, distinctPopulations } from "~/lib/thermo/populations";
+import type { WorkbenchState } from "~/lib/url-state";
+import type { EnsembleView, LevelView, SiftView } from "~/lib/views";
+import {
+  byPopulation,
+  type ConformerRow,
+  conformerRows,
+  type FrameRole,
+  frameRoles,
+} from "~/lib/workbench/conformers";
+import type { NearPair } from "~/lib/workbench/distances";
+import { clickSelection } from "~/lib/workbench/selection";
+import { MAX_OVERLAID } from "~/lib/workbench/view-plan";
+
+/** Of larger sets the columns that need coordinates are computed for the most populated only, and the page says so. */
+export const MAX_MEASURED = 5000;
+const NEAREST_PAIRS = 5;
+
+export interface Workbench {
+  ensemble: EnsembleView;
+  /** The sift shown; its result is there when `result` is. */
+  sift: SiftView | null;
+  result: SiftResult | null;
+  level: LevelView | null;
+  state: WorkbenchState;
+  change: ChangeState;
+  /** Follows the slider before the address does. */
+  temperatureK: number;
+  slideTemperature: (temperatureK: number | null) => void;
+  populations: DistinctPopulations | null;
+  rows: readonly ConformerRow[];
+  roles: ReadonlyMap<number, FrameRole>;
+  /** Frame numbers, the lowest conformer where nothing was chosen. */
+  selected: readonly number[];
+  select: (frame: number, how: "only" | "add" | "extend", order: readonly number[]) => void;
+  show: (frames: readonly number[]) => void;
+  coordinates: Coordinates;
+  /** Conformers whose coordinates the computed columns cover. */
+  measured: ReadonlySet<number>;
+  column: DistanceColumn | null;
+  /** Row that the RMSD column is taken to. */
+  reference: ConformerRow | null;
+  nearPairs: NearPair[] | null;
+  /** Row hovered in a table or chart, lit in the view. */
+  hovered: number | null;
+  hover: (frame: number | null) => void;
+}
+
+const Context = createContext<Workbench | null>(null);
+
+/** The workbench around a section. */
+export function useWorkbench(): Workbench {
+  const workbench = useContext(Context);
+  if (workbench === null) throw new Error("A section stands outside its workbench.");
+  return workbench;
+}
+
+const NO_ROWS: readonly ConformerRow[] = [];
+const NO_ROLES: ReadonlyMap<number, FrameRole> = new Map();
+
+/** Holds what the sections share: the ensemble, the sift, what is selected, and what follows from them. */
+export function WorkbenchProvider({
+  ensemble,
+  sift,
+  section,
+  children,
+}: {
+  ensemble: EnsembleView;
+  sift: SiftView | null;
+  /** Last part of the address: what a section does not show is not computed. */
+  section: string;
+  children: ReactNode;
+}) {
+  const [state, change] = useAddressState();
+  const [sliding, setSliding] = useState<number | null>(null);
+  const [hovered, setHovered] = useState<number | null>(null);
+  const temperatureK = sliding ?? state.temperatureK;
+  const result = sift?.result ?? null;
+  const level = ensemble.levels.find((one) => one.id === sift?.recipe.level) ?? null;
+  const energyKind = level?.energyKind ?? "electronic";
+
+  const populations = useMemo(
+    () => (result ? distinctPopulations(result.kept, energyKind, temperatureK, state.weights) : null),
+    [result, energyKind, temperatureK, state.weights],
+  );
+  const rows = useMemo(
+    () => (result ? conformerRows(result.kept, populations, state.windowKcal) : NO_ROWS),
+    [result, populations, state.windowKcal],
+  );
+  const roles = useMemo(() => (result ? frameRoles(result) : NO_ROLES), [result]);
+  const selected = useMemo(() => state.selected ?? (rows[0] ? [rows[0].frame] : []), [state.selected, rows]);
+
+  const select = useCallback<Workbench["select"]>(
+    (frame, how, order) =>
+      change({ selected: clickSelection(selected, frame, order, how) }, { replace: true }),
+    [change, selected],
+  );
+  const show = useCallback<Workbench["show"]>((frames) => change({ selected: [...frames] }), [change]);
+
+  const { coordinates, measured, column, reference, nearPairs } = useMeasures({
+    ensemble,
+    sift,
+    rows,
+    selected,
+    picked: state.atoms.length >= 2,
+    section,
+  });
+
+  const value = useMemo<Workbench>(
+    () => ({
+      ensemble,
+      sift,
+      result,
+      level,
+      state,
+      change,
+      temperatureK,
+      slideTemperature: setSliding,
+      populations,
+      rows,
+      roles,
+      selected,
+      select,
+      show,
+      coordinates,
+      measured,
+      column,
+      reference,
+      nearPairs,
+      hovered,
+      hover: setHovered,
+    }),
+    [
+      ensemble,
+      sift,
+      result,
+      level,
+      state,
+      change,
+      temperatureK,
+      populations,
+      rows,
+      roles,
+      selected,
+      select,
+      show,
+      coordinates,
+      measured,
+      column,
+      reference,
+      nearPairs,
+      hovered,
+    ],
+  );
+  return <Context value={value}>{children}</Context>;
+}
+
+/** Coordinates that the section needs, and the distances worked out from them. */
+function useMeasures({
+  ensemble,
+  sift,
+  rows,
+  selected,
+  picked,
+  section,
+}: {
+  ensemble: EnsembleView;
+  sift: SiftView | null;
+  rows: readonly ConformerRow[];
+  selected: readonly number[];
+  picked: boolean;
+  section: string;
+}) {
+  // The set that is measured must not change with the temperature, or every step of the slider would begin it anew.
+  const frames = useMemo(
+    () => (sift?.result?.kept ?? []).slice(0, MAX_MEASURED).map((conformer) => conformer.frame),
+    [sift],
+  );
+  // Which frames are overlaid hangs on the populations; while the temperature moves it need not keep up.
+  const settled = useDeferredValue(rows);
+  const distances = section === "populations" || section === "distinct-set";
+  const wanted = useMemo(() => {
+    const overlaid = byPopulation(settled)
+      .slice(0, MAX_OVERLAID)
+      .map((row) => row.frame);
+    return [...new Set([...selected, ...overlaid, ...(distances || picked ? frames : [])])];
+  }, [settled, selected, distances, picked, frames]);
+  const coordinates = useCoordinates(ensemble.id, ensemble.atoms, wanted);
+  const measured = useMemo(() => new Set(frames), [frames]);
+
+  const set = useMemo(
+    () =>
+      sift?.result && distances
+        ? {
+            key: sift.id,
+            elements: ensemble.elements,
+            bonds: ensemble.bonds,
+            options: {
+              atoms: sift.recipe.atoms,
+              symmetry: sift.recipe.symmetry,
+              mirror: sift.recipe.mirror === "merge",
+            },
+            frames,
+          }
+        : null,
+    [sift, ensemble, distances, frames],
+  );
+  const byFrame = useMemo(() => new Map(rows.map((row) => [row.frame, row])), [rows]);
+  const reference =
+    selected.map((frame) => byFrame.get(frame)).find((row) => row !== undefined) ?? rows[0] ?? null;
+  const at = reference === null ? null : frames.indexOf(reference.frame);
+  const { column, pairs } = useDistances(
+    set,
+    coordinates.positions,
+    at === null || at < 0 ? null : at,
+    section === "distinct-set" && frames.length <= MAX_PAIRED ? NEAREST_PAIRS : 0,
+  );
+  return { coordinates, measured, column, reference, nearPairs: pairs };
+}
+
+/** Above this many conformers the search for the nearest pairs would keep a phone busy for minutes. */
+export const MAX_PAIRED = 3000;

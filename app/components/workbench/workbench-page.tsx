@@ -1,0 +1,146 @@
+import { ArrowRight, Link2 } from "lucide-react";
+import { type ReactNode, useMemo } from "react";
+import { href, useLocation, useRevalidator } from "react-router";
+import { AppShell, pageClass } from "~/components/layout/app-shell";
+import { Button, ButtonLink } from "~/components/ui/button";
+import { showToast } from "~/components/ui/toast";
+import { useRunningSift } from "~/hooks/use-sift";
+import { searchOf, writeState } from "~/lib/url-state";
+import type { EnsembleView, IntakeView, SiftView } from "~/lib/views";
+import { recipeLine } from "~/lib/workbench/recipe-words";
+import { stations } from "~/lib/workbench/stations";
+import { RenameEnsemble } from "./rename-ensemble";
+import { SectionRail } from "./section-rail";
+import { ViewPanel } from "./view-panel";
+import { useWorkbench, WorkbenchProvider } from "./workbench-context";
+import { WorkbenchHeader } from "./workbench-header";
+
+/** Sections whose view folds away below 1024 px: they are read, not looked at. */
+const WITHOUT_VIEW = ["hand-over", "logbook"];
+
+export interface WorkbenchData {
+  ensemble: EnsembleView;
+  sift: SiftView | null;
+  intake: IntakeView;
+}
+
+/** Header, rail and view around the sections; one page, whatever section is open. */
+export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchData & { children: ReactNode }) {
+  const { pathname } = useLocation();
+  const section = pathname.split("/")[3] ?? "populations";
+  const followed = useFollowedSift(sift);
+  return (
+    <WorkbenchProvider ensemble={ensemble} sift={followed} section={section}>
+      <Frame section={section} intake={intake}>
+        {children}
+      </Frame>
+    </WorkbenchProvider>
+  );
+}
+
+/** The sift of the loader; while it runs its progress is followed, and its end fetches the result. */
+function useFollowedSift(sift: SiftView | null): SiftView | null {
+  const { revalidate } = useRevalidator();
+  const runs = sift !== null && (sift.status === "queued" || sift.status === "running");
+  const state = useRunningSift(runs ? sift.id : null, () => void revalidate());
+  return useMemo(
+    () => (sift && runs && state ? { ...sift, status: state.status, progress: state.progress } : sift),
+    [sift, runs, state],
+  );
+}
+
+function Frame({ section, intake, children }: { section: string; intake: IntakeView; children: ReactNode }) {
+  const { ensemble, sift, result, temperatureK, coordinates } = useWorkbench();
+  const held = useMemo(() => new Set(framesIn(intake.strip, "h")), [intake.strip]);
+  const base = href("/ensembles/:id", { id: ensemble.id });
+  const lowest = result?.kept[0]?.frame;
+  const positions = lowest === undefined ? null : (coordinates.positions.get(lowest) ?? null);
+  const asks = section === "intake" && ensemble.openQuestions > 0;
+  return (
+    <AppShell
+      results={result !== null}
+      recipe={
+        sift
+          ? `Recipe: ${recipeLine(sift.recipe, sift.recipe.level === null ? null : temperatureK)}`
+          : ensemble.openQuestions > 0
+            ? "No recipe yet: intake waits for an answer."
+            : "No recipe yet."
+      }
+    >
+      <WorkbenchHeader
+        ensemble={ensemble}
+        positions={positions}
+        rename={ensemble.mayCompute ? <RenameEnsemble ensemble={ensemble} /> : null}
+        actions={<HeaderActions section={section} />}
+      />
+      <SectionRail base={base} here={section} stations={stations(ensemble, sift, temperatureK)} />
+      <div
+        className={`${pageClass} grid gap-x-7 pt-4 pb-12 sm:pt-6 lg:grid-cols-[20rem_minmax(0,1fr)] xl:grid-cols-[26.25rem_minmax(0,1fr)] xl:gap-x-10 xl:pt-7 xl:pb-16`}
+      >
+        <aside
+          aria-label="3D view"
+          className={`min-w-0 self-start max-lg:mb-6 lg:sticky lg:top-22 lg:max-h-[calc(100dvh-6rem)] lg:overflow-y-auto lg:p-1 lg:-m-1 ${
+            WITHOUT_VIEW.includes(section) ? "max-lg:hidden" : ""
+          } ${asks ? "max-lg:order-2 max-lg:mt-9" : ""}`}
+        >
+          <ViewPanel held={held} />
+        </aside>
+        <div className="min-w-0">{children}</div>
+      </div>
+    </AppShell>
+  );
+}
+
+/** Frame numbers of one state, from the strip. */
+function framesIn(strip: string, state: string): number[] {
+  const found: number[] = [];
+  for (let at = strip.indexOf(state); at >= 0; at = strip.indexOf(state, at + 1)) found.push(at + 1);
+  return found;
+}
+
+function HeaderActions({ section }: { section: string }) {
+  const { ensemble, result } = useWorkbench();
+  const { search } = useLocation();
+  if (result === null) return null;
+  return (
+    <>
+      <CopyLink />
+      {section === "hand-over" ? null : (
+        <ButtonLink
+          kind="primary"
+          to={{ pathname: href("/ensembles/:id/hand-over", { id: ensemble.id }), search }}
+          icon={<ArrowRight aria-hidden="true" />}
+        >
+          Hand over
+        </ButtonLink>
+      )}
+    </>
+  );
+}
+
+/** Puts the address on the clipboard, with everything that is selected and with this very sift. */
+function CopyLink() {
+  const { sift, state } = useWorkbench();
+  const { pathname } = useLocation();
+  const copy = async () => {
+    const search = searchOf(writeState({ ...state, sift: sift?.id ?? null }));
+    try {
+      await navigator.clipboard.writeText(`${window.location.origin}${pathname}${search}`);
+      showToast({
+        tone: "done",
+        badge: "copied",
+        text: "The address shows members of the team what you see now.",
+      });
+    } catch {
+      showToast({
+        tone: "failed",
+        text: "The browser did not allow copying. Take the address from its bar.",
+      });
+    }
+  };
+  return (
+    <Button icon={<Link2 aria-hidden="true" />} onClick={copy}>
+      Copy link
+    </Button>
+  );
+}

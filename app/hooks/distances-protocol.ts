@@ -1,0 +1,19 @@
+import type { AtomSet } from "~/lib/structure";
+import type { NearPair } from "~/lib/workbench/distances";
+
+export interface DistanceOptions {
+  atoms: AtomSet;
+  symmetry: boolean;
+  mirror: boolean;
+}
+
+/** What the page asks of the thread that measures; `id` counts the sets, so that late answers are known as such. */
+export type DistanceRequest =
+  | { kind: "begin"; id: number; elements: number[]; bonds: number[]; options: DistanceOptions }
+  | { kind: "add"; id: number; atoms: number; positions: Float64Array }
+  | { kind: "column"; id: number; reference: number }
+  | { kind: "near"; id: number; most: number };
+
+export type DistanceAnswer =
+  | { kind: "column"; id: number; reference: number; known: number; rmsd: Float64Array; exact: Uint8Array }
+  | { kind: "near"; id: number; pairs: NearPair[] };

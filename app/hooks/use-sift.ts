@@ -1,0 +1,134 @@
+import { useEffect, useRef, useState } from "react";
+import useSWR from "swr";
+import type { SiftRequest } from "~/lib/recipe/recipe";
+import type { SiftStatus } from "~/lib/views";
+
+interface SiftState {
+  id: string;
+  status: SiftStatus;
+  progress: number;
+  error?: string | null;
+}
+
+function ended(status: SiftStatus): boolean {
+  return status === "done" || status === "failed" || status === "cancelled";
+}
+
+async function askState(address: string): Promise<SiftState> {
+  const response = await fetch(address, { headers: { accept: "application/json" } });
+  if (!response.ok) throw new Error(await problemWords(response));
+  return (await response.json()) as SiftState;
+}
+
+/** What the server says went wrong, in its own words. */
+async function problemWords(response: Response): Promise<string> {
+  try {
+    const problem = (await response.json()) as {
+      detail?: string;
+      title?: string;
+      errors?: { message: string }[];
+    };
+    const first = problem.errors?.[0]?.message;
+    return (
+      [problem.detail ?? problem.title, first].filter(Boolean).join(" ") || `Refused (${response.status}).`
+    );
+  } catch {
+    return `The server refused this (${response.status}).`;
+  }
+}
+
+/**
+ * Follows a sift that waits or runs, and tells when it has ended.
+ *
+ * @param id null where there is nothing to follow
+ */
+export function useRunningSift(id: string | null, onEnd: (state: SiftState) => void): SiftState | null {
+  const told = useRef<string | null>(null);
+  const latest = useRef(onEnd);
+  latest.current = onEnd;
+  const { data } = useSWR<SiftState, Error>(
+    id === null ? null : `/files/sifts/${id}?wait=1`,
+    (address: string) => askState(address),
+    {
+      refreshInterval: (state) => (state && ended(state.status) ? 0 : 150),
+      dedupingInterval: 0,
+      revalidateOnFocus: false,
+      shouldRetryOnError: true,
+      errorRetryInterval: 2000,
+    },
+  );
+  useEffect(() => {
+    if (!data || data.id !== id || !ended(data.status) || told.current === data.id) return;
+    told.current = data.id;
+    latest.current(data);
+  }, [data, id]);
+  return data?.id === id ? data : null;
+}
+
+export interface Asked {
+  id: string;
+  progress: number;
+  /** What is being computed. */
+  request: SiftRequest;
+}
+
+/**
+ * Asks for sifts with other settings. The newest question counts: an older one still running is cancelled. The result
+ * comes as an id; the page then shows that sift.
+ */
+export function useNewSift(ensembleId: string, onDone: (siftId: string) => void) {
+  const [asked, setAsked] = useState<Asked | null>(null);
+  const [error, setError] = useState<string | null>(null);
+  const turn = useRef(0);
+  const done = useRef(onDone);
+  done.current = onDone;
+  const running = useRef<string | null>(null);
+
+  const drop = (id: string | null) => {
+    if (id !== null) void fetch(`/files/sifts/${id}`, { method: "DELETE" }).catch(() => undefined);
+  };
+
+  const ask = async (request: SiftRequest) => {
+    turn.current += 1;
+    const mine = turn.current;
+    const before = running.current;
+    running.current = null;
+    setError(null);
+    try {
+      const response = await fetch(`/files/ensembles/${ensembleId}/sifts`, {
+        method: "POST",
+        headers: { "content-type": "application/json", accept: "application/json" },
+        body: JSON.stringify(request),
+      });
+      if (!response.ok) throw new Error(await problemWords(response));
+      let state = (await response.json()) as SiftState;
+      if (before !== null && before !== state.id) drop(before);
+      if (mine !== turn.current) return;
+      running.current = state.id;
+      setAsked({ id: state.id, progress: state.progress, request });
+      while (!ended(state.status)) {
+        state = await askState(`/files/sifts/${state.id}?wait=1`);
+        if (mine !== turn.current) return;
+        setAsked({ id: state.id, progress: state.progress, request });
+      }
+      running.current = null;
+      setAsked(null);
+      if (state.status === "done") done.current(state.id);
+      else if (state.status === "failed") setError(state.error ?? "This sift failed. Ask again.");
+    } catch (caught) {
+      if (mine !== turn.current) return;
+      running.current = null;
+      setAsked(null);
+      setError(caught instanceof Error ? caught.message : "The server does not answer. Try again.");
+    }
+  };
+
+  const cancel = () => {
+    turn.current += 1;
+    drop(running.current);
+    running.current = null;
+    setAsked(null);
+  };
+
+  return { ask, cancel, asked, error, clearError: () => setError(null) };
+}

@@ -1,0 +1,50 @@
+import { formatCount, formatTemperature, plural, withUnit } from "../format.ts";
+import type { EnsembleView, SiftView } from "../views.ts";
+
+export interface StationView {
+  path: string;
+  name: string;
+  figure: string;
+  state: "done" | "todo" | "care";
+}
+
+/** The sections of the workbench with their one figure each. */
+export function stations(ensemble: EnsembleView, sift: SiftView | null, temperatureK: number): StationView[] {
+  const ready = sift?.result ?? null;
+  const weighed = ready !== null && sift?.recipe.level !== null;
+  const running = sift !== null && (sift.status === "queued" || sift.status === "running");
+  const waits = running ? "under way" : ensemble.openQuestions > 0 ? "after intake" : "not yet";
+  const after = (figure: string): Pick<StationView, "figure" | "state"> =>
+    ready === null ? { figure: waits, state: "todo" } : { figure, state: "done" };
+  return [
+    { path: "intake", name: "Intake", ...intakeStation(ensemble) },
+    {
+      path: "distinct-set",
+      name: "Distinct set",
+      ...after(
+        ready
+          ? `${formatCount(ready.kept.length)} of ${formatCount(ready.kept.length + ready.dropped.length)}`
+          : "",
+      ),
+    },
+    {
+      path: "populations",
+      name: "Populations",
+      ...(weighed || ready === null
+        ? after(withUnit(formatTemperature(temperatureK), "K"))
+        : ({ figure: "no energies", state: "todo" } as const)),
+    },
+    { path: "hand-over", name: "Hand-over", ...after("CSV, XYZ, JSON") },
+    { path: "logbook", name: "Logbook", figure: "who did what", state: "done" },
+  ];
+}
+
+function intakeStation(ensemble: EnsembleView): Pick<StationView, "figure" | "state"> {
+  if (ensemble.openQuestions > 0) {
+    return { figure: `${plural(ensemble.openQuestions, "question")} open`, state: "care" };
+  }
+  const read = `${formatCount(ensemble.accepted)} of ${formatCount(ensemble.frames)}`;
+  return ensemble.held > 0
+    ? { figure: `${read}, ${formatCount(ensemble.held)} held`, state: "care" }
+    : { figure: read, state: "done" };
+}
