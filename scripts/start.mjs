@@ -4,8 +4,8 @@ import { readFileSync } from "node:fs";
 import path from "node:path";
 import { pathToFileURL } from "node:url";
 import { buildPlaces, needBuild } from "./lib/build.mjs";
-import { loadSettings, prepare } from "./lib/prepare.mjs";
-import { endRunning, portIsFree, StartError } from "./lib/processes.mjs";
+import { loadSettings, needPort, prepare } from "./lib/prepare.mjs";
+import { endRunning, StartError } from "./lib/processes.mjs";
 import { makeServer } from "./lib/serve.mjs";
 
 const say = (text) => console.log(text);
@@ -33,16 +33,6 @@ function stop(code) {
     process.exit(code);
   })();
   return state.stopping;
-}
-
-async function needPort() {
-  const port = Number(process.env.PORT || 3000);
-  const host = process.env.HOST || "127.0.0.1";
-  if (Number.isInteger(port) && port > 0 && port < 65536 && !(await portIsFree(port, host))) {
-    throw new StartError(
-      `Port ${port} on ${host} is taken, perhaps by another Lowlying. Stop that, or choose another port: PORT=${port + 1} npm start`,
-    );
-  }
 }
 
 async function main() {

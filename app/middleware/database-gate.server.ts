@@ -5,8 +5,8 @@ import { databaseAway } from "../services/http.server.ts";
 import { refuse } from "./refuse.server.ts";
 
 /**
- * Answers at once while the database is away, instead of letting every page wait for its own time-out. The look
- * is shared and kept for a second, so that it costs one small query a second.
+ * Answers at once while the database is away, instead of letting every page wait for its own time-out. Requests of one
+ * moment share the look, so that it costs next to nothing.
  */
 export const databaseGateMiddleware: MiddlewareFunction<Response> = async ({ url, context }, next) => {
   const health = /^\/+(healthz|readyz)$/i.test(url.pathname);

@@ -1,13 +1,14 @@
 import type { MiddlewareFunction } from "react-router";
 import { actorContext, cookieChangeContext, requestIdContext } from "../context.ts";
 import { type FoundSession, findSession } from "../services/auth/find-session.server.ts";
+import { within } from "../services/health.server.ts";
 import { asDomainError } from "../services/http.server.ts";
 import { refuse } from "./refuse.server.ts";
 import { readSessionCookie, writeSessionCookie } from "./session-cookie.server.ts";
 
 async function sessionOf(cookies: string | null): Promise<FoundSession | null> {
   const secret = cookies === null ? null : await readSessionCookie(cookies);
-  return secret === null ? null : findSession(secret);
+  return secret === null ? null : within(findSession(secret));
 }
 
 /**

@@ -1,16 +1,18 @@
 import { pool } from "../db/client.server.ts";
+import { databaseAway } from "./http.server.ts";
 import { migrationsAreIn } from "../db/migrate.server.ts";
 
 /** A person waits: two seconds are the most a page may take to say that the database is away. */
 const PATIENCE_MS = 1_500;
-const KEPT_MS = 1_000;
+const KEPT_MS = 100;
 
 let last: { at: number; answer: Promise<boolean> } | undefined;
 
-async function within<Result>(work: Promise<Result>, ms: number): Promise<Result> {
+/** The work's result, or a failure once the patience of a person is over. */
+export async function within<Result>(work: Promise<Result>, ms = PATIENCE_MS): Promise<Result> {
   let timer: ReturnType<typeof setTimeout> | undefined;
   const late = new Promise<never>((_, reject) => {
-    timer = setTimeout(() => reject(new Error("The database did not answer in time.")), ms);
+    timer = setTimeout(() => reject(databaseAway()), ms);
   });
   try {
     return await Promise.race([work, late]);
@@ -21,14 +23,14 @@ async function within<Result>(work: Promise<Result>, ms: number): Promise<Result
 
 async function ask(): Promise<boolean> {
   try {
-    await within(pool().query("select 1"), PATIENCE_MS);
+    await within(pool().query("select 1"));
     return true;
   } catch {
     return false;
   }
 }
 
-/** True when the database answers. One look a second for all requests; a "no" is looked at again by the next. */
+/** True when the database answers. Requests of one moment share a look; a "no" is looked at again by the next. */
 export async function databaseAnswers(now = performance.now()): Promise<boolean> {
   if (last === undefined || now - last.at > KEPT_MS) {
     const look = { at: now, answer: ask() };
@@ -42,7 +44,7 @@ export async function databaseAnswers(now = performance.now()): Promise<boolean>
 /** True when requests can be served: the database answers and its tables are as new as the code. */
 export async function isReady(): Promise<boolean> {
   try {
-    return await within(migrationsAreIn(), PATIENCE_MS);
+    return await within(migrationsAreIn());
   } catch {
     return false;
   }

@@ -2,7 +2,7 @@ import { existsSync } from "node:fs";
 import path from "node:path";
 import { openDatabase } from "../database.mjs";
 import { needPackages } from "./packages.mjs";
-import { ROOT, StartError } from "./processes.mjs";
+import { portIsFree, ROOT, StartError } from "./processes.mjs";
 import { localSecrets } from "./secrets.mjs";
 
 const [major, minor] = process.versions.node.split(".").map(Number);
@@ -15,6 +15,17 @@ export function loadSettings() {
   process.chdir(ROOT);
   const file = path.join(ROOT, ".env");
   if (existsSync(file)) process.loadEnvFile(file);
+}
+
+/** Refuses a port that somebody listens on, before anything is done for it. */
+export async function needPort() {
+  const port = Number(process.env.PORT || 3000);
+  const host = process.env.HOST || "127.0.0.1";
+  if (Number.isInteger(port) && port > 0 && port < 65536 && !(await portIsFree(port, host))) {
+    throw new StartError(
+      `Port ${port} on ${host} is taken, perhaps by another Lowlying. Stop that, or choose another port: PORT=${port + 1} npm start`,
+    );
+  }
 }
 
 export function dataFolder() {

@@ -1,0 +1,1 @@
+export function openThrowaway(say: (text: string) => void): Promise<{ url: string; close(): Promise<void> }>;

@@ -1,0 +1,46 @@
+import { fileURLToPath } from "node:url";
+import { defineConfig } from "vitest/config";
+
+/** Settings of every test process; the database is filled in by tests/setup/database.ts. */
+const env = {
+  NODE_ENV: "test",
+  DATABASE_URL: "mysql://nobody@127.0.0.1:1/none",
+  DATABASE_DURABILITY: "relaxed",
+  APP_ORIGIN: "http://127.0.0.1:3000",
+  SESSION_SECRET: "a key of the tests that signs nothing real",
+  ARGON2_MEMORY_KIB: "1024",
+  LOG_LEVEL: process.env.TEST_LOG_LEVEL ?? "silent",
+  OPEN_SIGN_UP: "",
+  SMTP_URL: "",
+  TRUST_PROXY: "",
+};
+
+export default defineConfig({
+  resolve: { alias: { "~": fileURLToPath(new URL("./app", import.meta.url)) } },
+  test: {
+    env,
+    pool: "forks",
+    restoreMocks: true,
+    projects: [
+      {
+        extends: true,
+        test: {
+          name: "unit",
+          include: ["app/**/*.test.{ts,tsx}", "tests/*.test.ts"],
+          setupFiles: ["tests/setup/console.ts"],
+        },
+      },
+      {
+        extends: true,
+        test: {
+          name: "integration",
+          include: ["tests/integration/**/*.test.{ts,tsx}"],
+          globalSetup: ["tests/setup/server.ts"],
+          setupFiles: ["tests/setup/console.ts", "tests/setup/database.ts"],
+          testTimeout: 30_000,
+          hookTimeout: 60_000,
+        },
+      },
+    ],
+  },
+});
