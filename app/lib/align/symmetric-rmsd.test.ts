@@ -415,50 +415,53 @@ describe("bounds", () => {
   });
 
   it("of small groups under nearly one rotation never reject what can be reached", () => {
-    // Skeletons with CH2 and CH3 whose hydrogens are shaken or turned, so that the sharper bound has work to do.
+    // Decane: the last two CH2 and the two CH3 are still open, all hydrogens shaken.
     const graph = makeGraph(
-      Uint8Array.from({ length: 17 }, (_, a) => (a < 5 ? 6 : 1)),
-      alkaneBonds(5).flat(),
+      Uint8Array.from({ length: 32 }, (_, a) => (a < 10 ? 6 : 1)),
+      alkaneBonds(10).flat(),
     );
     const plan = makePlan(graph, "all");
-    const chosen = [...plan.atoms];
+    const depth = plan.levels.length - 6;
+    const open = { ...plan.chain, levels: plan.chain.levels.slice(depth) };
+    const rest = [...everyMapping(open, plan.atoms)];
+    expect(rest).toHaveLength(144);
     const tree = new CosetTree(plan);
     const local = new LocalBound(tree);
-    let rejected = 0;
     let passed = 0;
-    const torsion = fc.integer({ min: -180, max: 180 });
+    let rejected = 0;
+    const torsions = fc.array(fc.integer({ min: -180, max: 180 }), { minLength: 7, maxLength: 7 });
     fc.assert(
-      fc.property(torsion, torsion, pointSets(17), fc.boolean(), (t, u, noise, mirror) => {
-        const hand = mirror ? -1 : 1;
-        const [x, y] = [alkane(5, [t, 180]), alkane(5, [t + 20, u])].map((points) =>
-          points.map((p, a) => p.map((v, k) => v + 0.08 * noise[a]![k]!)),
-        ) as [number[][], number[][]];
+      fc.property(torsions, torsions, pointSets(32), fc.boolean(), fc.nat(), (t, u, noise, mirror, path) => {
+        const x = alkane(10, t).map((p, a) => p.map((v, k) => v + 0.08 * noise[a]![k]!));
+        const y = alkane(
+          10,
+          t.map((angle, k) => angle + u[k]! / 6),
+        );
         const [a, b] = [shapeOf(plan, x), shapeOf(plan, y)];
-        const spread = a[3 * 17]! + b[3 * 17]!;
-        const images = mirror ? mirrored(y) : y;
-        tree.start(a, 0, b, 0, hand);
-        tree.expand(0);
-        for (let k = 0; k < plan.levels[0]!.images; k++) {
-          tree.descend(0, k);
-          const u0 = plan.chain.levels[0]!.transversal[k]!;
-          const below = [...everyMapping({ ...plan.chain, levels: plan.chain.levels.slice(1) }, chosen)].map(
-            (m) => m.map((image) => u0[image]!),
-          );
-          const least = bruteForceRmsd(x, images, below);
-          const reached = (spread - 17 * least * least) / 2;
-          expect(local.hopeless(1, reached * (1 - 1e-12), spread / 2)).toBe(false);
-          // And it is sharper than the plain one: it rejects much of what that lets pass.
-          const need = reached + 2;
-          if (!tree.hopeless(1, need)) {
-            passed += 1;
-            if (local.hopeless(1, need, spread / 2)) rejected += 1;
-          }
-          expect(largestRoot(tree.m, 9) + tree.slack[1]!).toBeGreaterThanOrEqual(reached - 1e-9);
+        const spread = a[3 * 32]! + b[3 * 32]!;
+        tree.start(a, 0, b, 0, mirror ? -1 : 1);
+        for (let i = 0; i < depth; i++) {
+          tree.expand(i);
+          tree.descend(i, (path >> i) % plan.levels[i]!.images);
+        }
+        const first = Int32Array.from(tree.mapAt(depth));
+        const least = bruteForceRmsd(
+          x,
+          mirror ? mirrored(y) : y,
+          rest.map((m) => m.map((image) => first[image]!)),
+        );
+        const reached = (spread - 32 * least * least) / 2;
+        expect(local.hopeless(depth, reached * (1 - 1e-12), spread / 2)).toBe(false);
+        expect(largestRoot(tree.m, 9 * depth) + tree.slack[depth]!).toBeGreaterThanOrEqual(reached - 1e-9);
+        // And it is sharper than the plain one: it rejects much of what that lets pass.
+        if (!tree.hopeless(depth, reached + 1)) {
+          passed += 1;
+          if (local.hopeless(depth, reached + 1, spread / 2)) rejected += 1;
         }
       }),
-      { seed: 20266, numRuns: 6 },
+      { seed: 20266, numRuns: 60 },
     );
-    expect(passed).toBeGreaterThan(10);
+    expect(passed).toBeGreaterThan(20);
     expect(rejected).toBeGreaterThan(passed / 2);
   });
 });

@@ -1,0 +1,164 @@
+import fc from "fast-check";
+import { describe, expect, it } from "vitest";
+import {
+  alkane,
+  alkaneBonds,
+  motions,
+  moved,
+  placed,
+  type Vector,
+} from "../../../tests/factories/geometry.ts";
+import { c60, chain, cubane, plainGraph, ring, withHydrogens } from "../../../tests/factories/graphs.ts";
+import { type Points, pack } from "../../../tests/factories/yardstick.ts";
+import { type Graph, makeGraph } from "../structure.ts";
+import { makePlan, writeShape } from "./plan.ts";
+import { SymmetryNumber } from "./symmetry-number.ts";
+
+function symmetryNumber(graph: Graph, points: Points, nodeLimit?: number): number | null {
+  const plan = makePlan(graph, "all");
+  const shape = new Float64Array(plan.shapeLength);
+  writeShape(plan, pack(points), 0, shape, 0);
+  return new SymmetryNumber(plan, nodeLimit).count(shape, 0);
+}
+
+const methane = withHydrogens("C", []);
+const tetrahedral = [
+  [0, 0, 0],
+  [1, 1, 1],
+  [1, -1, -1],
+  [-1, 1, -1],
+  [-1, -1, 1],
+].map((p) => p.map((v) => 0.63 * v));
+const benzene = withHydrogens("CCCCCC", ring(6), [
+  [0, 1],
+  [2, 3],
+  [4, 5],
+]);
+const hexagon = [1.39, 2.48].flatMap((r) =>
+  [0, 1, 2, 3, 4, 5].map((k) => [r * Math.cos((k * Math.PI) / 3), r * Math.sin((k * Math.PI) / 3), 0]),
+);
+const cube = [0.785, 1.41].flatMap((r) =>
+  Array.from({ length: 8 }, (_, a) => [1, 2, 4].map((bit) => (a & bit ? r : -r))),
+);
+const ethane = withHydrogens("CC", chain(2));
+const ethaneAt = (turn: number): Vector[] => {
+  const [a, b]: [Vector, Vector] = [
+    [0, 0, 0],
+    [1.53, 0, 0],
+  ];
+  const first = [0, 120, 240].map((t) => placed([0.5, 1, 0], b, a, 1.09, 111.2, t));
+  return [a, b, ...first, ...[60, 180, 300].map((t) => placed(first[0]!, a, b, 1.09, 111.2, t + turn))];
+};
+const alkaneGraph = (carbons: number) =>
+  makeGraph(
+    Uint8Array.from({ length: 3 * carbons + 2 }, (_, a) => (a < carbons ? 6 : 1)),
+    alkaneBonds(carbons).flat(),
+  );
+
+describe("symmetry number", () => {
+  // Orders of the rotational subgroups of the point groups: T 12, D6 12, O 24, D3 6, C2 2.
+  it.each([
+    ["methane", methane, tetrahedral, 12],
+    ["benzene", benzene, hexagon, 12],
+    ["cubane", cubane(), cube, 24],
+    ["ethane, staggered", ethane, ethaneAt(0), 6],
+    ["ethane, eclipsed", ethane, ethaneAt(60), 6],
+    ["ethane, half-way (D3)", ethane, ethaneAt(30), 6],
+    [
+      "carbon dioxide",
+      plainGraph("OCO", chain(3)),
+      [
+        [-1.16, 0, 0],
+        [0, 0, 0],
+        [1.16, 0, 0],
+      ],
+      2,
+    ],
+    [
+      "hydrogen",
+      plainGraph("HH", chain(2)),
+      [
+        [0, 0, 0],
+        [0.74, 0, 0],
+      ],
+      2,
+    ],
+    [
+      "water",
+      plainGraph("HOH", chain(3)),
+      [
+        [0.76, 0.59, 0],
+        [0, 0, 0],
+        [-0.76, 0.59, 0],
+      ],
+      2,
+    ],
+    ["argon", makeGraph(Uint8Array.of(18), []), [[1, 2, 3]], 1],
+    ["butane, anti", alkaneGraph(4), alkane(4, [180]), 2],
+    ["butane, gauche", alkaneGraph(4), alkane(4, [65]), 2],
+    ["pentane, trans trans", alkaneGraph(5), alkane(5, [180, 180]), 2],
+    ["pentane, trans gauche", alkaneGraph(5), alkane(5, [180, 65]), 1],
+    ["pentane, gauche gauche", alkaneGraph(5), alkane(5, [65, 65]), 2],
+    ["hexane, g+ t g- (inversion centre, no axis)", alkaneGraph(6), alkane(6, [65, 180, -65]), 1],
+  ] as [string, Graph, number[][], number][])("%s", (_name, graph, points, expected) => {
+    expect(symmetryNumber(graph, points)).toBe(expected);
+  });
+
+  it("of a ball of 60 carbons is 60", () => {
+    // Corners of the truncated icosahedron: one third along each edge of the icosahedron.
+    const graph = c60();
+    expect(symmetryNumber(graph, c60Points())).toBe(60);
+  });
+
+  it("stands small distortions and does not change by motion", () => {
+    fc.assert(
+      fc.property(
+        motions,
+        fc.array(fc.integer({ min: -30, max: 30 }), { minLength: 48, maxLength: 48 }),
+        (motion, noise) => {
+          const shaken = cube.map((p, a) => p.map((v, k) => v + noise[3 * a + k]! / 1000));
+          expect(symmetryNumber(cubane(), moved(shaken, motion))).toBe(24);
+        },
+      ),
+      { seed: 20271, numRuns: 30 },
+    );
+  });
+
+  it("falls where a distortion is real", () => {
+    // Stretched along z: D4 instead of O.
+    expect(
+      symmetryNumber(
+        cubane(),
+        cube.map(([x, y, z]) => [x!, y!, 1.4 * z!]),
+      ),
+    ).toBe(8);
+  });
+
+  it("does not count two hydrogens of a large molecule changing places, whatever the mean says", () => {
+    // 662 atoms: such a swap alone is an RMSD of 1.78 sqrt(2/662) = 0.098 Å.
+    const torsions = Array.from(
+      { length: 217 },
+      (_, k) => [180, 65, 180, -65, 180, 180, 65][k % 7]!,
+    );
+    expect(symmetryNumber(alkaneGraph(220), alkane(220, torsions))).toBe(1);
+  });
+
+  it("is null where the work bound is met or not all exchanges are known", () => {
+    expect(symmetryNumber(cubane(), cube, 10)).toBeNull();
+    const plan = makePlan(cubane(), "all", { workLimit: 10 });
+    expect(new SymmetryNumber(plan).count(new Float64Array(plan.shapeLength), 0)).toBeNull();
+  });
+});
+
+function c60Points(): number[][] {
+  const golden = (1 + Math.sqrt(5)) / 2;
+  const corners: number[][] = [];
+  for (const a of [-1, 1]) {
+    for (const b of [-golden, golden]) corners.push([0, a, b], [a, b, 0], [b, 0, a]);
+  }
+  const near = (p: number[], q: number[]) =>
+    Math.abs(p.reduce((s, v, k) => s + (v - q[k]!) ** 2, 0) - 4) < 1e-9;
+  return corners.flatMap((p) =>
+    corners.filter((q) => near(p, q)).map((q) => p.map((v, k) => 1.43 * 1.5 * (v + (q[k]! - v) / 3))),
+  );
+}
