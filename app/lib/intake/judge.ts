@@ -1,0 +1,260 @@
+import { atomName, symbolOf } from "../chem/elements.ts";
+import { hillFormula } from "../chem/formula.ts";
+import type { StereoUnit } from "../chem/refine.ts";
+import { graphSignature, isomorphism } from "../chem/signature.ts";
+import { ConfigurationComparer, fromConfiguration } from "../chem/stereo.ts";
+import type { Graph } from "../structure.ts";
+import { describeChange } from "./bond-changes.ts";
+import { configurationWords } from "./configuration-words.ts";
+import type { BondKind, Hands, NearPairs, Shape } from "./frame-kinds.ts";
+import type { FrameRecord, FrameVerdict, MoleculeGroup } from "./frame-record.ts";
+import { type Finding, FrameRemarks } from "./remarks.ts";
+import type { IntakeMessage } from "./report.ts";
+import { agrees } from "./vote.ts";
+
+/** Bond sets for which equality of the molecule is decided exactly; beyond, by signature, for the words only. */
+const EXACT_UP_TO = 200;
+
+const OWN_ENSEMBLE = "It can become an ensemble of its own: take these frames in from a file of their own.";
+
+/** Judges frames against the group of their ensemble. */
+export class FrameJudge {
+  private readonly units: StereoUnit[];
+  private readonly signs: Int8Array;
+  private readonly comparer: ConfigurationComparer;
+  private readonly signature: string;
+  private readonly remarks: FrameRemarks;
+  private readonly sameAtoms = new Remembered((shape: Shape) => sameComposition(shape, this.group));
+  private readonly sameBonds = new Remembered((kind: BondKind) => this.hasBonds(kind));
+  private readonly sameMolecule = new Remembered((kind: BondKind) => this.isSameMolecule(kind));
+  private readonly bondWords = new Remembered((kind: BondKind) => this.otherBonds(kind, null));
+  private readonly handWords = new Remembered((hands: Hands) => this.otherHands(hands));
+  private exactTests = 0;
+
+  constructor(
+    private readonly group: MoleculeGroup,
+    private readonly graph: Graph,
+    records: readonly FrameRecord[],
+  ) {
+    const { units, signs } = fromConfiguration(graph, group.configuration);
+    this.units = units;
+    this.signs = signs;
+    this.comparer = new ConfigurationComparer(graph, units);
+    this.signature = graphSignature(graph);
+    const own = records.filter((record) => record.kind && this.sameBonds.of(record.kind));
+    this.remarks = new FrameRemarks(graph, units, own);
+  }
+
+  judge(record: FrameRecord): FrameVerdict {
+    const reason = this.reasonToHold(record);
+    if (reason) return held(record, reason);
+    const remarks = this.remarks.on(record);
+    return {
+      frame: record.frame,
+      state: remarks.length > 0 ? "remarked" : "accepted",
+      reason: null,
+      messages: remarks.map((remark) => toMessage(record, remark, "remark")),
+    };
+  }
+
+  /** A frame that cannot be judged against anything: its atoms lie on each other. */
+  static unreadable(record: FrameRecord): FrameVerdict {
+    return held(record, tooClose(record));
+  }
+
+  /** Remarks on the ensemble as a whole. */
+  overall(file: string): IntakeMessage[] {
+    return this.remarks.overall().map(({ code, message }) => ({ code, severity: "remark", file, message }));
+  }
+
+  hasOrder({ elements, isotopes }: Shape): boolean {
+    const group = this.group;
+    return (
+      elements.length === group.elements.length &&
+      elements.every((z, a) => z === group.elements[a]) &&
+      isotopes.every((mass, a) => mass === group.isotopes[a])
+    );
+  }
+
+  private reasonToHold(record: FrameRecord): Finding | null {
+    const { kind } = record;
+    if (!kind) return tooClose(record);
+    if (!this.sameAtoms.of(record.shape)) return this.otherComposition(record.shape);
+    const charge = this.otherCharge(record);
+    if (charge) return charge;
+    if (this.sameBonds.of(kind)) return record.hands && this.handWords.of(record.hands);
+    // Words that name distances are this frame's own; the rest is the same for all with these bonds.
+    return record.near ? this.otherBonds(kind, record.near) : this.bondWords.of(kind);
+  }
+
+  private otherComposition({ elements, isotopes }: Shape): Finding {
+    const ensemble = withDummies(this.group.elements, this.group.isotopes);
+    return {
+      code: "X12",
+      reason: "other-composition",
+      message: `Another composition: ${withDummies(elements, isotopes)}, where the ensemble is ${ensemble}.`,
+      hint: OWN_ENSEMBLE,
+    };
+  }
+
+  private otherCharge(record: FrameRecord): Finding | null {
+    const keys = ["charge", "multiplicity"] as const;
+    const key = keys.find((one) => !agrees(record[one], this.group[one]));
+    if (!key) return null;
+    const value = (of: number | null): string => (key === "charge" ? signed(of ?? 0) : String(of));
+    return {
+      code: "X37",
+      reason: "other-composition",
+      message: `Another ${key}: ${value(record[key])}, where the ensemble has ${value(this.group[key])}.`,
+      hint: OWN_ENSEMBLE,
+    };
+  }
+
+  private hasBonds({ shape, graph }: BondKind): boolean {
+    const own = this.group.bonds;
+    return (
+      graph.bonds.length === own.length && this.hasOrder(shape) && graph.bonds.every((a, k) => a === own[k])
+    );
+  }
+
+  private isSameMolecule({ graph }: BondKind): boolean {
+    if (graphSignature(graph) !== this.signature) return false;
+    this.exactTests += 1;
+    return this.exactTests > EXACT_UP_TO || isomorphism(this.graph, graph) !== null;
+  }
+
+  private otherBonds(kind: BondKind, near: NearPairs | null): Finding {
+    const alike = this.sameMolecule.of(kind);
+    if (!this.hasOrder(kind.shape)) return alike ? this.otherOrder(kind) : otherIsomer;
+    const change = describeChange(
+      this.graph,
+      kind.graph,
+      (i, j) => near?.pairs.find((pair) => pair.i === i && pair.j === j)?.ratio ?? null,
+    );
+    // A hydrogen that went from one oxygen of a carboxyl group to the other is told as that; more is another order.
+    if (alike && Math.max(change.broken, change.formed) > 2) return this.otherOrder(kind);
+    const same = alike ? " It is the same molecule with equal atoms exchanged." : "";
+    return {
+      code: "X38",
+      reason: "other-species",
+      message: `Another species (${change.kind}): ${change.words}.${same}`,
+      hint: OWN_ENSEMBLE,
+    };
+  }
+
+  private otherOrder({ shape }: BondKind): Finding {
+    const { elements } = this.group;
+    const at = shape.elements.findIndex((z, a) => z !== elements[a]);
+    const where =
+      at < 0
+        ? "elements stand in the same places, bonds do not"
+        : `atom ${at + 1} is ${symbolOf(shape.elements[at]!)}, in the ensemble ${symbolOf(elements[at]!)}`;
+    return {
+      code: "X13",
+      reason: "other-order",
+      message: `The same molecule with its atoms in another order: ${where}.`,
+      hint: "Write all frames in one order of atoms and take the file in again.",
+    };
+  }
+
+  private otherHands(hands: Hands): Finding | null {
+    const signs = this.remarks.signsOf(hands);
+    if (this.comparer.same(this.signs, signs)) return null;
+    const mirror = this.signs.map((sign, u) => (this.units[u]!.kind === "centre" ? -sign : sign));
+    const isMirror = this.comparer.same(mirror, signs);
+    // In the mirror image every centre is inverted, and naming fewer would mislead.
+    const different = isMirror
+      ? this.units.flatMap((unit, u) => (unit.kind === "centre" && signs[u] !== 0 ? [u] : []))
+      : this.comparer.difference(this.signs, signs);
+    const message = configurationWords(this.graph, this.units, different, signs, isMirror);
+    return { code: "X40", reason: "other-configuration", message, hint: this.hintFor(different) };
+  }
+
+  private hintFor(different: readonly number[]): string {
+    const ammonium = different
+      .map((u) => this.units[u]!)
+      .flatMap((unit) => (unit.kind === "centre" && this.isAmmonium(unit.atom) ? [unit.atom] : []))[0];
+    if (ammonium === undefined) return OWN_ENSEMBLE;
+    const name = atomName(this.graph.elements, ammonium);
+    return `${name} carries a hydrogen and inverts as soon as that comes off: release the frame if it does.`;
+  }
+
+  private isAmmonium(atom: number): boolean {
+    const { offsets, neighbours, elements } = this.graph;
+    if (elements[atom] !== 7) return false;
+    return neighbours.subarray(offsets[atom]!, offsets[atom + 1]!).some((b) => elements[b] === 1);
+  }
+}
+
+/** A function that works out each answer once. */
+class Remembered<K, V> {
+  private readonly known = new Map<K, { value: V }>();
+
+  constructor(private readonly find: (key: K) => V) {}
+
+  of(key: K): V {
+    let entry = this.known.get(key);
+    if (!entry) {
+      entry = { value: this.find(key) };
+      this.known.set(key, entry);
+    }
+    return entry.value;
+  }
+}
+
+const otherIsomer: Finding = {
+  code: "X38",
+  reason: "other-species",
+  message: "Another species: the same composition, but other bonds, and another order of atoms.",
+  hint: OWN_ENSEMBLE,
+};
+
+function tooClose({ shape, closest, allZero }: FrameRecord): Finding {
+  if (allZero || !closest) {
+    const hint = "The frame holds no geometry.";
+    return { code: "X28", reason: "unreadable", message: "All coordinates are zero.", hint };
+  }
+  const pair = [closest.i, closest.j].map((atom) => atomName(shape.elements, atom)).join(" and ");
+  return {
+    code: "X28",
+    reason: "unreadable",
+    message: `${pair} are ${closest.distance.toFixed(2)} Å apart; no two atoms come nearer than 0.5 Å.`,
+    hint: "Look whether the calculation failed, or whether lengths are in nanometres.",
+  };
+}
+
+function held(record: FrameRecord, finding: Finding): FrameVerdict {
+  return {
+    frame: record.frame,
+    state: "held",
+    reason: finding.reason ?? "unclear",
+    messages: [toMessage(record, finding, "hold")],
+  };
+}
+
+function toMessage(
+  { file, line, frame }: FrameRecord,
+  { code, message, hint }: Finding,
+  severity: "hold" | "remark",
+): IntakeMessage {
+  return { code, severity, file, line, frame, message, ...(hint && { hint }) };
+}
+
+function sameComposition({ elements, isotopes }: Shape, group: MoleculeGroup): boolean {
+  if (elements.length !== group.elements.length) return false;
+  const sorted = (z: ArrayLike<number>, mass: ArrayLike<number>): string =>
+    Array.from({ length: z.length }, (_, a) => z[a]! * 512 + mass[a]!)
+      .sort((x, y) => x - y)
+      .join();
+  return sorted(elements, isotopes) === sorted(group.elements, group.isotopes);
+}
+
+function withDummies(elements: ArrayLike<number>, isotopes: ArrayLike<number>): string {
+  const dummies = Array.from(elements).filter((z) => z === 0).length;
+  const formula = hillFormula(elements, isotopes);
+  return dummies === 0 ? formula : `${formula} with ${dummies} dummy ${dummies > 1 ? "atoms" : "atom"}`;
+}
+
+function signed(charge: number): string {
+  return charge === 0 ? "0" : charge > 0 ? `+${charge}` : `−${-charge}`;
+}
