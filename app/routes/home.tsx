@@ -1,3 +1,28 @@
-export default function Page() {
-  return null;
+import type { HomeData } from "~/components/home/home-page";
+import { HomePage } from "~/components/home/home-page";
+import { AppShell } from "~/components/layout/app-shell";
+import { actorContext } from "~/context";
+import { env } from "~/env.server";
+import type { Route } from "./+types/home";
+
+export const meta: Route.MetaFunction = () => [
+  { title: "Lowlying: which conformers matter" },
+  {
+    name: "description",
+    content:
+      "A workbench for conformer ensembles: every frame accounted for, duplicates explained, populations that say where they come from.",
+  },
+];
+
+export async function loader({ context }: Route.LoaderArgs): Promise<HomeData> {
+  const actor = context.get(actorContext);
+  return { example: null, signedIn: actor.kind === "user", openSignUp: env().OPEN_SIGN_UP };
+}
+
+export default function Page({ loaderData }: Route.ComponentProps) {
+  return (
+    <AppShell results={loaderData.example !== null}>
+      <HomePage data={loaderData} />
+    </AppShell>
+  );
 }

@@ -106,8 +106,17 @@ function useWidth(assumed: number) {
   return [ref, width] as const;
 }
 
-/** The tall strip with c1, c2, ... below its segments; names and figures go where they no longer fit. */
-export function LabelledDepthStrip({ shares, height = 36 }: { shares: readonly number[]; height?: number }) {
+/** The tall strip with names below its segments; names and figures go where they no longer fit. */
+export function LabelledDepthStrip({
+  shares,
+  names,
+  height = 36,
+}: {
+  /** Fractions in falling order, and the names of their conformers. */
+  shares: readonly number[];
+  names: readonly string[];
+  height?: number;
+}) {
   const [ref, width] = useWidth(1200);
   const all = segments(shares);
   const named = all.findIndex(({ share }) => share * width < 26);
@@ -120,7 +129,7 @@ export function LabelledDepthStrip({ shares, height = 36 }: { shares: readonly n
         <Bars shares={shares} height={height} />
         {all.slice(0, shown).map(({ x, share }, i) => (
           <text key={i} x={`${x * 100}%`} y={height + 16} className="fill-ink text-xs font-semibold">
-            c{i + 1}
+            {names[i]}
             {share * width > 72 ? (
               <tspan className="fill-ink-3 font-normal"> {formatPopulation(share)} %</tspan>
             ) : null}
@@ -128,7 +137,7 @@ export function LabelledDepthStrip({ shares, height = 36 }: { shares: readonly n
         ))}
         {shown < all.length && roomAtEnd ? (
           <text x="100%" y={height + 16} textAnchor="end" className="fill-ink-3 text-xs">
-            to c{all.length}
+            and {all.length - shown} more
           </text>
         ) : null}
       </svg>
