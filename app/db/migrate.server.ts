@@ -1,10 +1,10 @@
 import { existsSync, readFileSync } from "node:fs";
 import path from "node:path";
-import { drizzle } from "drizzle-orm/mysql2";
-import { migrate } from "drizzle-orm/mysql2/migrator";
+import { readMigrationFiles } from "drizzle-orm/migrator";
 import type { PoolConnection, RowDataPacket } from "mysql2/promise";
 import { env } from "../env.server.ts";
 import { pool } from "./client.server.ts";
+import { driverCode } from "./driver-errors.server.ts";
 
 /** The server keeps data in a way that the application does not accept; says what to set. */
 export class DatabaseSettingsError extends Error {
@@ -87,6 +87,68 @@ async function withLock<Result>(work: (connection: PoolConnection) => Promise<Re
   }
 }
 
+/** What a statement says that was carried out before, by a run that was cut short behind it. */
+const ALREADY = new Set([
+  "ER_TABLE_EXISTS_ERROR",
+  "ER_DUP_FIELDNAME",
+  "ER_DUP_KEYNAME",
+  "ER_DUP_KEY",
+  "ER_CANT_DROP_FIELD_OR_KEY",
+  "ER_CANT_CREATE_TABLE",
+]);
+
+async function readStep(connection: PoolConnection, migration: number) {
+  await connection.query("insert ignore into __migration_steps values (?, 0, 0)", [migration]);
+  const [rows] = await connection.query<RowDataPacket[]>(
+    "select done, failed from __migration_steps where migration = ?",
+    [migration],
+  );
+  return { done: Number(rows[0]?.done ?? 0), failed: Number(rows[0]?.failed ?? 0) === 1 };
+}
+
+async function runStep(connection: PoolConnection, migration: number, sql: string, mayBeDone: boolean) {
+  try {
+    await connection.query(sql);
+  } catch (error) {
+    if (!mayBeDone || !ALREADY.has(driverCode(error) ?? "")) {
+      // Noted, so that the next run does not take this refusal for work that was done.
+      await connection.query("update __migration_steps set failed = 1 where migration = ?", [migration]);
+      throw error;
+    }
+  }
+  await connection.query("update __migration_steps set done = done + 1, failed = 0 where migration = ?", [
+    migration,
+  ]);
+}
+
+/**
+ * Runs what is not in yet, a statement at a time. MariaDB commits every change of a table by itself, so the number of
+ * statements done is kept beside it: a run that was cut short goes on where it stopped, and only the one statement whose
+ * record may be missing is allowed to find its work done.
+ */
+async function runMigrations(connection: PoolConnection): Promise<void> {
+  await connection.query(
+    "create table if not exists __drizzle_migrations (id serial primary key, hash text not null, created_at bigint)",
+  );
+  await connection.query(
+    "create table if not exists __migration_steps (migration bigint primary key, done int not null, failed tinyint not null)",
+  );
+  const [rows] = await connection.query<RowDataPacket[]>("select created_at from __drizzle_migrations");
+  const finished = new Set(rows.map((row) => Number(row.created_at)));
+  const folder = path.resolve(env().MIGRATIONS_DIRECTORY);
+  for (const { folderMillis, hash, sql } of readMigrationFiles({ migrationsFolder: folder })) {
+    if (finished.has(folderMillis)) continue;
+    const { done, failed } = await readStep(connection, folderMillis);
+    for (const [step, statement] of sql.entries()) {
+      if (step >= done) await runStep(connection, folderMillis, statement, step === done && !failed);
+    }
+    await connection.query("insert into __drizzle_migrations (hash, created_at) values (?, ?)", [
+      hash,
+      folderMillis,
+    ]);
+  }
+}
+
 /**
  * Refuses a server with unsafe settings, then brings the tables up to date, one process at a time.
  *
@@ -103,9 +165,7 @@ export async function migrateDatabase(): Promise<void> {
       );
     }
     await compareByByte(connection, found);
-    await migrate(drizzle(connection, { casing: "snake_case" }), {
-      migrationsFolder: path.resolve(env().MIGRATIONS_DIRECTORY),
-    });
+    await runMigrations(connection);
   });
 }
 
