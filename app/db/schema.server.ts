@@ -195,9 +195,8 @@ export const ensembles = mysqlTable(
     teamId: idColumn()
       .notNull()
       .references(() => teams.id, { onDelete: "cascade" }),
-    seriesId: idColumn()
-      .notNull()
-      .references(() => series.id),
+    /** Null only while the files are still being read: the series may be named after them. */
+    seriesId: idColumn().references(() => series.id),
     name: varchar({ length: 200 }).notNull(),
     /** SHA-256 over the checksums of the first upload's files in order; null once deleted, so that it frees its place. */
     filesSha: sha256Column(),

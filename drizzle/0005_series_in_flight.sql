@@ -1,0 +1,1 @@
+ALTER TABLE `ensembles` MODIFY COLUMN `series_id` char(16) character set ascii collate ascii_bin;
