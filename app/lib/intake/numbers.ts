@@ -156,7 +156,9 @@ function faultOf(token: string): NumberFault {
 }
 
 /** `0,123`, `-1,5`, `1.234,5`: digits with one comma, after which digits end the token. */
-function isDecimalComma(token: string): boolean {
+function isDecimalComma(written: string): boolean {
+  // In "0,1, 0,2" the last comma separates.
+  const token = written.endsWith(",") ? written.slice(0, -1) : written;
   const at = token.indexOf(",");
   if (at < 0 || at !== token.lastIndexOf(",") || at === token.length - 1) return false;
   const whole = token.slice(0, at).replace(/^[+-]/, "");

@@ -15,7 +15,7 @@ export interface Sniffed {
 /** So many bytes are enough to know. */
 export const SNIFF_BYTES = 4096;
 
-const WAY_OUT = "Take in XYZ or SDF, plain or gzip.";
+const WAY_OUT = "Write the structures as XYZ or SDF, plain or gzip.";
 
 /** Leading bytes as Latin-1 text, and what they announce. */
 const SIGNATURES: readonly (readonly [prefix: string, code: string, looksLike: string])[] = [

@@ -170,7 +170,7 @@ function checkColumns(fields: readonly Field[], columns: number): AtomLine | nul
     fault: {
       code: "X31",
       reason: "unreadable",
-      message: `The atom has ${fields.length} columns, Properties announces ${columns}.`,
+      message: `The atom has ${fields.length} columns, “Properties” announces ${columns}.`,
       hint: "Correct Properties, or leave it out.",
     },
   };

@@ -24,7 +24,7 @@ export function finishFrame(builder: FrameBuilder, place: FramePlace): XyzFrame 
   const cell = readCell(builder.keys);
   const fault = builder.fault ?? place.fault ?? checkWhole(builder, cell);
   const sound = fault === null;
-  const label = labelOf(builder.keys);
+  const label = labelOf(builder);
   const remarks = collectRemarks(builder, place, label, cell);
   return {
     number: place.number,
@@ -64,12 +64,15 @@ function noteOf(builder: FrameBuilder, place: FramePlace): string | null {
   return parts.length === 0 ? null : parts.join("\n").slice(0, NOTE_LENGTH);
 }
 
-function labelOf(keys: ReadonlyMap<string, ExtendedEntry>): string | null {
+/** The key `name`, else `label`; in plain text also as `name: ...`. */
+function labelOf(builder: FrameBuilder): string | null {
   for (const key of ["name", "label"]) {
-    const text = keys.get(key)?.text.trim();
+    const text = builder.keys.get(key)?.text.trim();
     if (text) return text;
   }
-  return null;
+  if (builder.extended) return null;
+  const plain = /(?:^|\s)(?:name|label):\s*("[^"]*"|\S+)/.exec(builder.comment ?? "")?.[1];
+  return plain?.replace(/^"|"$/g, "").trim() || null;
 }
 
 function wholeNumber(keys: ReadonlyMap<string, ExtendedEntry>, names: readonly string[]): number | null {
@@ -125,7 +128,7 @@ function checkWhole(builder: FrameBuilder, cell: Cell | null): BuilderFault | nu
       hint: "Its count is 0; the calculation may have failed.",
     };
   }
-  return checkUnit(builder) ?? checkCell(builder, cell);
+  return checkCell(builder, cell) ?? checkUnit(builder);
 }
 
 function checkUnit(builder: FrameBuilder): BuilderFault | null {
@@ -151,7 +154,7 @@ function checkCell(builder: FrameBuilder, cell: Cell | null): BuilderFault | nul
     code: "X35",
     reason: "unreadable",
     line: builder.line,
-    message: `${a} and ${b} are bonded only across the wall of the cell.`,
+    message: `The atoms ${a} and ${b} are bonded only across the wall of the cell.`,
     hint: "Write the molecule in one piece; the cell itself is not used.",
   };
 }
@@ -209,7 +212,7 @@ function commentRemarks(builder: FrameBuilder, label: string | null, cell: Cell 
 function cellRemark(cell: Cell, line: number): Remark {
   const odd = cell.stated && cell.vectors === null;
   const message = odd
-    ? "Lattice does not hold nine numbers; it is kept as text."
+    ? "“Lattice” does not hold nine numbers; it is kept as text."
     : "The cell (Lattice, pbc) is not used: the molecule is read as it stands.";
   return { code: "X35", line, message };
 }

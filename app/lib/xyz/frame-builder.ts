@@ -88,16 +88,20 @@ export class FrameBuilder implements PlainTarget {
     const parsed = parseExtendedComment(line.text);
     if ("fault" in parsed) {
       if (!this.extended) return;
-      const message = `The comment line announces Properties but does not parse: ${parsed.fault.reason}.`;
+      const message = `The comment line announces “Properties” but does not parse: ${parsed.fault.reason}.`;
       this.#refuseLayout(line, "X36", message, parsed.fault.column);
       return;
     }
     this.keys = parsed.keys;
-    if (!this.extended) return;
+    if (!this.extended) {
+      // Words of plain text are no keys.
+      this.keys = new Map([...parsed.keys].filter(([, entry]) => entry.text !== "" || entry.value !== true));
+      return;
+    }
     this.oddities = parsed.oddities;
     const properties = parsed.keys.get("Properties");
     const layout = properties ? parseProperties(properties.text) : { reason: "it cannot be found" };
-    if ("reason" in layout) this.#refuseLayout(line, "X31", `Properties cannot be used: ${layout.reason}.`);
+    if ("reason" in layout) this.#refuseLayout(line, "X31", `“Properties” cannot be used: ${layout.reason}.`);
     else {
       this.layout = layout;
       this.extra = (layout.columns ?? 4) - 4;

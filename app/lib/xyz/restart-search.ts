@@ -98,7 +98,10 @@ export class RestartSearch {
       return whole && builder.fault !== null ? "failed" : "more";
     }
     if (!builder.takeAtom(line)) return "failed";
-    if (whole && builder.fault !== null && !CONTENT_FAULTS.has(builder.fault.code)) return "failed";
+    const code = builder.fault?.code;
+    if (whole && code !== undefined && !CONTENT_FAULTS.has(code)) return "failed";
+    // One word behind a stray number is no atom line, even if the word is a symbol.
+    if (code === "X24") return "failed";
     return builder.complete || !whole ? "done" : "more";
   }
 }

@@ -1,0 +1,146 @@
+import { quoteFound } from "../text/escape.ts";
+import { type EnergyUnit, GAS_CONSTANT_J, kcalPer, kjPer, STANDARD_TEMPERATURE_K } from "../units.ts";
+import type { EnergyColumn, EnergyRow } from "./energy-column.ts";
+import type { IntakeMessage } from "./report.ts";
+
+/** Spreads of one molecule's conformers outside of these bounds ask for a second look (methods page, section 1). */
+export const NARROW_KCAL = 0.02;
+export const WIDE_KCAL = 100;
+
+/** A last written place above this many kJ/mol makes weights coarse (row E11). */
+const COARSE_KJ = 0.1;
+
+type Remark = Omit<IntakeMessage, "severity" | "code">;
+
+export interface EnergyRemarkOptions {
+  readonly unit: EnergyUnit;
+  /** False where nobody said which kind of energy it is (row E13). */
+  readonly kindStated: boolean;
+  /** Frame numbers that take part, such as the accepted ones; default all. */
+  readonly include?: (frame: number) => boolean;
+}
+
+/**
+ * Remarks on a column of energies once its unit is settled: missing ones (E10), too few digits (E11), one far off,
+ * all equal, a positive total energy (E12), kind not stated (E13). Those with a `frame` belong to it.
+ *
+ * @example energyRemarks(column, { unit: "hartree", kindStated: false }).map((message) => message.code)
+ */
+export function energyRemarks(column: EnergyColumn, options: EnergyRemarkOptions): IntakeMessage[] {
+  const chosen = column.rows.flatMap((row, k) => ((options.include?.(row.frame) ?? true) ? [k] : []));
+  const there = chosen.filter((k) => column.present[k] === 1);
+  return [
+    ...chosen.filter((k) => column.present[k] === 0).map((k) => missing(column, k)),
+    ...coarse(column, options.unit),
+    ...spread(column, there, options.unit),
+    ...(options.kindStated || there.length === 0 ? [] : [kindOpen(column.rows[0]!)]),
+  ];
+}
+
+function remark(code: string, rest: Remark): IntakeMessage {
+  return { code, severity: "remark", ...rest };
+}
+
+function missing(column: EnergyColumn, k: number): IntakeMessage {
+  const { frame, file, line } = column.rows[k]!;
+  const text = column.problems.get(k);
+  const hint = "It is accepted but gets no population; a value can be added later with a table.";
+  const place = { file, frame, line: line + 1, hint };
+  if (text === undefined) return remark("E10", { ...place, message: "The frame has no energy." });
+  return remark("E10", { ...place, message: "The energy is not a number.", found: quoteFound(text) });
+}
+
+function coarse(column: EnergyColumn, unit: EnergyUnit): IntakeMessage[] {
+  const place = 10 ** -column.decimals * kjPer(unit);
+  const row = column.rows[0];
+  if (!row || column.count === 0 || place <= COARSE_KJ) return [];
+  const share = Math.expm1((place * 1000) / (GAS_CONSTANT_J * STANDARD_TEMPERATURE_K));
+  const effect =
+    share > 1 ? `a factor of ${(1 + share).toPrecision(2)}` : `about ${Math.round(share * 100)} %`;
+  const decimals = column.decimals === 1 ? "1 decimal" : `${column.decimals || "No"} decimals`;
+  return [
+    remark("E11", {
+      file: row.file,
+      message: `${decimals} in ${unit} ${column.decimals === 1 ? "is" : "are"} ${place.toPrecision(2)} kJ/mol: ${effect} in a weight at 298 K.`,
+      hint: "Have the energies written with more digits.",
+    }),
+  ];
+}
+
+function spread(column: EnergyColumn, there: readonly number[], unit: EnergyUnit): IntakeMessage[] {
+  const first = there[0];
+  if (first === undefined || there.length < 2) return positive(column, there, unit);
+  const { file } = column.rows[first]!;
+  const sorted = Float64Array.from(there, (k) => column.values[k]!).sort();
+  const low = sorted[0]!;
+  const kcal = (sorted[sorted.length - 1]! - low) * kcalPer(unit);
+  const remarks: IntakeMessage[] = positive(column, there, unit);
+  if (kcal === 0) {
+    const message = `All ${there.length} energies are equal.`;
+    remarks.push(
+      remark("E12", { file, message, hint: "Is this the number that changes between conformers?" }),
+    );
+  } else if (kcal < NARROW_KCAL) {
+    const message = `The energies span ${kcal.toPrecision(2)} kcal/mol, less than conformers of one molecule do.`;
+    remarks.push(
+      remark("E12", { file, message, hint: "Is the unit right? Hartree read as kcal/mol looks like this." }),
+    );
+  }
+  if (kcal > WIDE_KCAL) remarks.push(...wide(column, there, sorted, unit, kcal));
+  return remarks;
+}
+
+/**
+ * One frame, or a few (one in twenty at most), farther than 100 kcal/mol from the median of others that lie together;
+ * else the whole is too wide.
+ */
+function wide(
+  column: EnergyColumn,
+  there: readonly number[],
+  sorted: Float64Array,
+  unit: EnergyUnit,
+  kcal: number,
+): IntakeMessage[] {
+  const median = sorted[sorted.length >> 1]!;
+  const off = there.filter((k) => Math.abs(column.values[k]! - median) * kcalPer(unit) > WIDE_KCAL);
+  const far = new Set(off);
+  const rest = there.filter((k) => !far.has(k)).map((k) => column.values[k]!);
+  const restKcal = rest.length === 0 ? 0 : (maximum(rest) - minimum(rest)) * kcalPer(unit);
+  if (off.length === 0 || off.length > Math.max(1, there.length / 20) || restKcal > WIDE_KCAL) {
+    const message = `The energies span ${Math.round(kcal).toLocaleString("en-GB")} kcal/mol, more than conformers of one molecule do.`;
+    const hint = "Is the unit right, and are all frames the same molecule?";
+    return [remark("E12", { file: column.rows[there[0]!]!.file, message, hint })];
+  }
+  return off.map((k) => {
+    const { frame, file, line } = column.rows[k]!;
+    const away = Math.round(Math.abs(column.values[k]! - median) * kcalPer(unit)).toLocaleString("en-GB");
+    const message = `The energy lies ${away} kcal/mol from the middle of the others.`;
+    return remark("E12", {
+      file,
+      frame,
+      line: line + 1,
+      message,
+      hint: "Did the calculation fail? Hold the frame if so.",
+    });
+  });
+}
+
+const minimum = (values: readonly number[]) => values.reduce((low, value) => Math.min(low, value));
+const maximum = (values: readonly number[]) => values.reduce((high, value) => Math.max(high, value));
+
+/** Total energies are negative; relative ones begin at 0, and those of force fields are not given in hartree. */
+function positive(column: EnergyColumn, there: readonly number[], unit: EnergyUnit): IntakeMessage[] {
+  if (unit !== "hartree" || there.some((k) => column.values[k]! <= 0)) return [];
+  const row = there[0] === undefined ? undefined : column.rows[there[0]];
+  if (!row) return [];
+  const message = "All energies are positive; total energies in hartree are negative.";
+  return [remark("E12", { file: row.file, message, hint: "Is the unit right, or are they relative?" })];
+}
+
+function kindOpen(row: EnergyRow): IntakeMessage {
+  return remark("E13", {
+    file: row.file,
+    message: "The kind of energy is not stated; it is taken as electronic.",
+    hint: "Say if it holds zero-point, enthalpy or free-energy terms.",
+  });
+}
