@@ -1,6 +1,6 @@
 import { pool } from "../db/client.server.ts";
-import { databaseAway } from "./http.server.ts";
 import { migrationsAreIn } from "../db/migrate.server.ts";
+import { databaseAway } from "./http.server.ts";
 
 /** A person waits: two seconds are the most a page may take to say that the database is away. */
 const PATIENCE_MS = 1_500;

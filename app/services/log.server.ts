@@ -26,7 +26,7 @@ const SECRET_KEYS = [
  */
 export function loggablePath(path: string): string {
   const plain = path.split("?", 1)[0] ?? path;
-  return plain.replace(/^\/(reset-password|e|invitations)\/[^/]+/, "/$1/***").slice(0, 300);
+  return plain.replace(/^(\/+(?:reset-password|e|invitations)\/+)[^/]+/i, "$1***").slice(0, 300);
 }
 
 /**

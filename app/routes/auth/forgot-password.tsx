@@ -13,6 +13,9 @@ import type { Route } from "./+types/forgot-password";
 
 export const meta: Route.MetaFunction = () => [{ title: "Reset the password · Lowlying" }];
 
+/** Retry-After of a refusal. */
+export const headers: Route.HeadersFunction = ({ actionHeaders }) => actionHeaders;
+
 export async function action({ request, context }: Route.ActionArgs) {
   return forPage(context.get(requestIdContext), async () => {
     const email = String((await request.formData()).get("email") ?? "");

@@ -16,6 +16,9 @@ import type { Route } from "./+types/login";
 
 export const meta: Route.MetaFunction = () => [{ title: "Sign in · Lowlying" }];
 
+/** Retry-After of a refusal. */
+export const headers: Route.HeadersFunction = ({ actionHeaders }) => actionHeaders;
+
 /** Where the form leads: the page that somebody wanted, else their teams. */
 const target = (url: URL) => ownPath(url.searchParams.get("to"), href("/teams"));
 

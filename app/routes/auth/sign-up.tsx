@@ -14,6 +14,9 @@ import type { Route } from "./+types/sign-up";
 
 export const meta: Route.MetaFunction = () => [{ title: "Sign up · Lowlying" }];
 
+/** Retry-After of a refusal. */
+export const headers: Route.HeadersFunction = ({ actionHeaders }) => actionHeaders;
+
 export function loader({ context }: Route.LoaderArgs) {
   if (context.get(actorContext).kind === "user") throw redirect(href("/teams"));
   return { open: env().OPEN_SIGN_UP };

@@ -10,7 +10,7 @@ const WALKS = [
   "abcdefghijklmnopqrstuvwxyz",
   "qwertyuiopasdfghjklzxcvbnm",
   "qazwsxedcrfvtgbyhnujmikolp",
-  "01234567890",
+  "0123456789",
 ]
   .flatMap((walk) => [walk, [...walk].reverse().join("")])
   .map((walk) => walk.repeat(6));
