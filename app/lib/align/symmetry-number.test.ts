@@ -136,10 +136,7 @@ describe("symmetry number", () => {
 
   it("does not count two hydrogens of a large molecule changing places, whatever the mean says", () => {
     // 662 atoms: such a swap alone is an RMSD of 1.78 sqrt(2/662) = 0.098 Å.
-    const torsions = Array.from(
-      { length: 217 },
-      (_, k) => [180, 65, 180, -65, 180, 180, 65][k % 7]!,
-    );
+    const torsions = Array.from({ length: 217 }, (_, k) => [180, 65, 180, -65, 180, 180, 65][k % 7]!);
     expect(symmetryNumber(alkaneGraph(220), alkane(220, torsions))).toBe(1);
   });
 

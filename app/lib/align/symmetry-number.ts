@@ -6,7 +6,7 @@ import type { SymmetryPlan } from "./plan.ts";
 export const SYMMETRY_TOLERANCE = 0.1;
 /** Å: and no atom lies further from the place it maps to. */
 export const SYMMETRY_REACH = 0.5;
-const DEFAULT_NODE_LIMIT = 500_000;
+const DEFAULT_NODE_LIMIT = 100_000;
 
 /**
  * Symmetry numbers of conformers of one molecule: how many exchanges of equivalent atoms (all atoms, hydrogens
@@ -22,11 +22,14 @@ export class SymmetryNumber {
   private readonly settledTo: Int32Array;
   private readonly m = new Float64Array(9);
   private readonly rotation = new Float64Array(9);
+  /** Nodes looked at since the object was made. */
+  nodes = 0;
 
   /** @param plan over all atoms: `makePlan(graph, "all")` */
   constructor(
     readonly plan: SymmetryPlan,
-    private readonly nodeLimit = DEFAULT_NODE_LIMIT,
+    /** Nodes allowed to one conformer. */
+    public nodeLimit = DEFAULT_NODE_LIMIT,
   ) {
     this.tree = new CosetTree(plan);
     this.next = new Int32Array(plan.levels.length + 1);
@@ -53,8 +56,8 @@ export class SymmetryNumber {
     if (depths === 0) return 1;
     const e = shape[at + 3 * n]!;
     const need = e - (n * SYMMETRY_TOLERANCE * SYMMETRY_TOLERANCE) / 2 - 1e-12 * e - 1e-30;
+    const limit = this.nodes + this.nodeLimit;
     let found = 0;
-    let nodes = 0;
     let depth = 0;
     tree.start(shape, at, shape, at, 1);
     tree.expand(0);
@@ -66,7 +69,7 @@ export class SymmetryNumber {
         continue;
       }
       next[depth] = k + 1;
-      if (++nodes > this.nodeLimit) return null;
+      if (++this.nodes > limit) return null;
       if (tree.childHopeless(depth, k, need)) continue;
       tree.descend(depth, k);
       if (!this.distancesKept(shape, at, depth + 1)) continue;

@@ -9,7 +9,8 @@ import type { SiftEnergies, Walk } from "./walk.ts";
 /** Pairs between two looks at the `cancelled` hook. */
 const PAIRS_A_LOOK = 1024;
 /** Search nodes of a whole sift after which single comparisons get fewer, so that no molecule makes it endless. */
-const GENEROUS_NODES = 200e6;
+const GENEROUS_NODES = 100e6;
+const GENEROUS_SYMMETRY_NODES = 5e6;
 const FRUGAL_NODE_LIMIT = 5_000;
 
 export interface LeaderRule {
@@ -157,6 +158,7 @@ class LeaderWalk {
     const { block, symmetry } = this;
     this.store.push(this.shape);
     const toMirror = this.comparer.toOwnMirror(this.shape, 0);
+    if (symmetry.nodes > GENEROUS_SYMMETRY_NODES) symmetry.nodeLimit = FRUGAL_NODE_LIMIT;
     writeShape(symmetry.plan, block.positions, row * 3 * block.atoms, this.wholeShape, 0);
     this.result.leaders.push({
       row,
