@@ -1,3 +1,4 @@
+import { useEffect, useRef } from "react";
 import { Form, href, Link, useLocation } from "react-router";
 import { labelClass } from "~/components/ui/field";
 import type { Theme } from "~/lib/theme";
@@ -21,6 +22,13 @@ const ENTRY =
 /** Who is signed in, day or night, the teams, the way out. A native popover with plain forms: it works without script. */
 export function AccountMenu() {
   const { user, theme } = useShellData();
+  const { key } = useLocation();
+  const menu = useRef<HTMLDivElement>(null);
+  // Without script every choice loads a page and so closes the menu; with it the router does not.
+  // biome-ignore lint/correctness/useExhaustiveDependencies: the key of the address is what closes it
+  useEffect(() => {
+    if (menu.current?.matches(":popover-open")) menu.current.hidePopover();
+  }, [key]);
   if (!user) return null;
   return (
     <div className="relative">
@@ -33,6 +41,7 @@ export function AccountMenu() {
         {initials(user.name)}
       </button>
       <div
+        ref={menu}
         id="account"
         popover="auto"
         className="absolute top-12 right-4 left-auto m-0 w-64 rounded-md border border-rule-2 bg-sheet p-1 text-sm text-ink shadow-float xl:right-8"

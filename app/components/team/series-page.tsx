@@ -204,8 +204,8 @@ function NoEnsembles({ data, onFiles }: { data: SeriesPageData; onFiles: (files:
           </>
         }
       >
-        Drop files anywhere on this page, or look at a finished one first. It stays as it is; nothing you do
-        there is kept.
+        Drop files anywhere on this page, or choose them.
+        {example ? " The finished one shows what becomes of them; nothing you do there is kept." : ""}
       </StatePanel>
       <Dropzone onFiles={onFiles} hint={`XYZ and extended XYZ, also .gz; up to ${data.limits}`} />
     </div>

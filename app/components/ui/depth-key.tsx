@@ -6,7 +6,7 @@ const SHORT = ["<1", "1", "2", "5", "10", "20", "40 up"];
 /** The seven tints with their break points. */
 export function DepthKey({ className = "max-w-110" }: { className?: string }) {
   return (
-    <div className={className}>
+    <div className={`@container ${className}`}>
       <p className="text-xs text-ink-3">Population, %</p>
       <svg
         role="img"
@@ -19,7 +19,7 @@ export function DepthKey({ className = "max-w-110" }: { className?: string }) {
           <rect key={fill} x={`${(i / 7) * 100}%`} width={`${100 / 7 - 0.25}%`} height="8" className={fill} />
         ))}
         {[LABELS, SHORT].map((labels, set) => (
-          <g key={labels[0]} className={set === 0 ? "max-sm:hidden" : "sm:hidden"}>
+          <g key={labels[0]} className={set === 0 ? "@max-sm:hidden" : "@sm:hidden"}>
             {labels.map((text, i) => (
               <text
                 key={text}

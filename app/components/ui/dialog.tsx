@@ -1,6 +1,6 @@
 import { X } from "lucide-react";
 import { Dialog as Radix } from "radix-ui";
-import type { ReactNode } from "react";
+import { type ReactNode, useRef } from "react";
 import { IconButton } from "./button";
 
 /**
@@ -23,6 +23,7 @@ export function Dialog({
   description?: ReactNode;
   children: ReactNode;
 }) {
+  const content = useRef<HTMLDivElement>(null);
   return (
     <Radix.Root open={open} onOpenChange={onOpenChange}>
       {trigger ? <Radix.Trigger asChild>{trigger}</Radix.Trigger> : null}
@@ -30,6 +31,16 @@ export function Dialog({
         <Radix.Overlay className="fixed inset-0 z-40 bg-scrim" />
         <Radix.Content
           {...(description ? {} : { "aria-describedby": undefined })}
+          ref={content}
+          onOpenAutoFocus={(event) => {
+            // The question's own field comes before the cross that stands above it.
+            const field = content.current?.querySelector<HTMLElement>(
+              "input:not([type=hidden]), select, textarea",
+            );
+            if (!field) return;
+            event.preventDefault();
+            field.focus();
+          }}
           className="fixed inset-0 z-50 grid content-start gap-4 overflow-y-auto border-rule-2 bg-sheet p-4 text-sm text-ink shadow-float sm:inset-auto sm:top-1/2 sm:left-1/2 sm:max-h-[calc(100dvh-4rem)] sm:w-140 sm:max-w-[calc(100vw-2rem)] sm:-translate-x-1/2 sm:-translate-y-1/2 sm:rounded-md sm:border sm:p-6"
         >
           <div className="flex items-center justify-between gap-3">
