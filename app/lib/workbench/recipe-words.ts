@@ -19,6 +19,14 @@ export const ENERGY_KIND_WORDS: Record<EnergyKind, string> = {
   free: "free energies",
 };
 
+/** What populations from a kind of energy are called. */
+export const POPULATION_WORDS: Record<EnergyKind, string> = {
+  electronic: "Electronic energy populations",
+  "zero-point": "Populations from energies with zero-point",
+  enthalpy: "Populations from enthalpies",
+  free: "Free energy populations",
+};
+
 /** The recipe as the foot of the page says it, without a full stop. */
 export function recipeLine(recipe: SiftRecipe, temperatureK: number | null): string {
   const parts = [

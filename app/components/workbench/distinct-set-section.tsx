@@ -1,0 +1,154 @@
+import { Download } from "lucide-react";
+import { useMemo, useRef, useState } from "react";
+import { href } from "react-router";
+import { Button, buttonClass } from "~/components/ui/button";
+import { Finding, SectionHead } from "~/components/ui/finding";
+import { Note } from "~/components/ui/note";
+import { ProgressBar } from "~/components/ui/progress-bar";
+import { TextButton, TextLink } from "~/components/ui/text-link";
+import { useNewSift } from "~/hooks/use-sift";
+import { fixed, formatPercent, formatRmsd, plural, withUnit } from "~/lib/format";
+import type { SiftRequest } from "~/lib/recipe/recipe";
+import { distinctFinding, joinWords, nearMirror } from "~/lib/workbench/findings";
+import { requestOf } from "~/lib/workbench/recipe-words";
+import { DistinctTable } from "./distinct-table";
+import { FindFrame } from "./find-frame";
+import { AroundTolerance, NearestPairs } from "./near-cut";
+import { OutdatedNote, SectionState } from "./section-state";
+import { SiftSettings } from "./sift-settings";
+import { useWorkbench } from "./workbench-context";
+
+/** Reducing the accepted frames to the shapes that differ, by a recipe that can be moved. */
+export function DistinctSetSection() {
+  const { ensemble, sift, result, change } = useWorkbench();
+  // One step of history for one gesture: while a thumb is held the later results replace the first.
+  const gesture = useRef<"open" | "fresh">("fresh");
+  const [before, setBefore] = useState<{ id: string; kept: number; tolerance: number } | null>(null);
+  const { ask, cancel, asked, error, clearError } = useNewSift(ensemble.id, (id) => {
+    if (sift === null || id === sift.id) return;
+    if (result && gesture.current === "fresh")
+      setBefore({ id: sift.id, kept: result.kept.length, tolerance: sift.recipe.rmsdTolerance });
+    change({ sift: id }, { replace: gesture.current === "open" });
+    gesture.current = "open";
+  });
+  const request = useMemo<SiftRequest>(
+    () => (sift ? requestOf(sift.recipe) : { level: ensemble.levels[0]?.id ?? null }),
+    [sift, ensemble.levels],
+  );
+  const onAsk = (next: SiftRequest, settled: boolean) => {
+    clearError();
+    void ask(next).finally(() => {
+      if (settled) gesture.current = "fresh";
+    });
+  };
+  const finding = result ? distinctFinding(result) : null;
+  const startButton = ensemble.mayCompute ? (
+    <Button kind="primary" onClick={() => onAsk(request, true)} disabled={asked !== null}>
+      {asked ? `Comparing, ${formatPercent(asked.progress)}` : `Sift ${plural(ensemble.accepted, "frame")}`}
+    </Button>
+  ) : undefined;
+  return (
+    <section aria-labelledby="section-title">
+      <SectionHead
+        id="section-title"
+        title="Distinct set"
+        aside={<TextLink to={`${href("/methods")}#distinct-set`}>How this is computed</TextLink>}
+      />
+      {sift === null || result === null || finding === null ? (
+        <SectionState start={startButton} />
+      ) : (
+        <>
+          <Finding more={finding.second}>{finding.text}</Finding>
+          {before !== null && before.id !== sift.id ? (
+            <p className="mt-1 text-ink-2">
+              Before: {plural(before.kept, "shape")} at {withUnit(fixed(before.tolerance, 3), "Å")}.{" "}
+              <TextButton
+                onClick={() => {
+                  setBefore(null);
+                  change({ sift: before.id });
+                }}
+              >
+                Undo
+              </TextButton>
+            </p>
+          ) : null}
+          <OutdatedNote onAgain={() => onAsk(request, true)} busy={asked !== null} />
+          <SiftSettings ensemble={ensemble} request={request} onAsk={onAsk} />
+          <SiftLine asked={asked} error={error} onCancel={cancel} />
+          {ensemble.mayCompute ? null : (
+            <p className="mt-3 text-xs text-ink-3">
+              {ensemble.role === "guest"
+                ? "This is an example: the settings show how it was computed. In a team of your own they can be moved."
+                : "You read this team’s work: an analyst or an owner can move these settings."}
+            </p>
+          )}
+          <MirrorWarning />
+          <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
+            <AroundTolerance recipe={sift.recipe} />
+            <NearestPairs />
+          </div>
+          <FindFrame />
+          <DistinctTable
+            tools={
+              <a
+                className={buttonClass({ size: "sm" })}
+                href={href("/files/sifts/:id/export.xyz", { id: sift.id })}
+                download
+              >
+                <Download aria-hidden="true" />
+                XYZ
+              </a>
+            }
+          />
+        </>
+      )}
+    </section>
+  );
+}
+
+/** The sift under way, while the one before stays on the page. The line keeps its height, so that nothing jumps. */
+function SiftLine({
+  asked,
+  error,
+  onCancel,
+}: {
+  asked: ReturnType<typeof useNewSift>["asked"];
+  error: string | null;
+  onCancel: () => void;
+}) {
+  return (
+    <div className="mt-2 min-h-6" aria-live="polite">
+      {error ? (
+        <p role="alert" className="text-danger">
+          {error}
+        </p>
+      ) : asked ? (
+        <div className="appear-late flex max-w-read items-center gap-4 text-xs text-ink-2">
+          <span className="whitespace-nowrap">Comparing with the new settings</span>
+          <span className="flex-1">
+            <ProgressBar share={asked.progress} label="Sift with the new settings" />
+          </span>
+          <TextButton onClick={onCancel}>Cancel</TextButton>
+        </div>
+      ) : null}
+    </div>
+  );
+}
+
+/** Conformers whose factor of 2 hangs on the tolerance. */
+function MirrorWarning() {
+  const { sift, result } = useWorkbench();
+  if (sift === null || result === null) return null;
+  const near = nearMirror(result, sift.recipe);
+  if (near.length === 0) return null;
+  const named = near.slice(0, 5).map(({ name, rmsd }) => `${name} (${withUnit(formatRmsd(rmsd), "Å")})`);
+  const rest = near.length - named.length;
+  return (
+    <Note tone="remark" className="mt-4">
+      {joinWords(rest > 0 ? [...named, `${rest} more`] : named)}{" "}
+      {near.length === 1 ? "lies near its own mirror image" : "lie near their own mirror images"}, not far
+      from the tolerance of {withUnit(fixed(sift.recipe.rmsdTolerance, 3), "Å")}. Whether{" "}
+      {near.length === 1 ? "it counts" : "they count"} once or twice hangs on that choice.
+    </Note>
+  );
+}

@@ -1,0 +1,329 @@
+import { useVirtualizer } from "@tanstack/react-virtual";
+import { ChevronDown, ChevronRight } from "lucide-react";
+import { type MouseEvent, type ReactNode, useCallback, useId, useMemo, useRef, useState } from "react";
+import { DegeneracyBadge } from "~/components/ui/badge";
+import { IconButton } from "~/components/ui/button";
+import { BlockHead } from "~/components/ui/finding";
+import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { linkClass, TextButton } from "~/components/ui/text-link";
+import { formatCount, formatEnergy, formatRmsd, plural } from "~/lib/format";
+import type { DroppedFrame } from "~/lib/recipe/result";
+import type { ConformerRow } from "~/lib/workbench/conformers";
+import { repeatsOf } from "~/lib/workbench/repeats";
+import { useRowFocus } from "./table-grid";
+import { useWorkbench } from "./workbench-context";
+
+const FIRST_ROWS = 12;
+const FIRST_REPEATS = 7;
+const MID = "max-sm:hidden";
+const NO_REPEATS: DroppedFrame[] = [];
+
+/** Every kept conformer and, opened, the frames that repeat it: nothing was dropped without a reason. */
+export function DistinctTable({ tools }: { tools: ReactNode }) {
+  const { rows, result, selected, select, hover } = useWorkbench();
+  const id = useId();
+  const [all, setAll] = useState(false);
+  const [open, setOpen] = useState<ReadonlySet<number>>(new Set());
+  const repeats = useMemo(() => (result ? repeatsOf(result) : new Map<number, DroppedFrame[]>()), [result]);
+  const order = useMemo(() => rows.map((row) => row.frame), [rows]);
+  const chosen = new Set(selected);
+  const most = rows.reduce((found, row) => Math.max(found, row.found), 1);
+  const shown = all ? rows.length : Math.min(FIRST_ROWS, rows.length);
+  const box = useRef<HTMLDivElement>(null);
+  const virtual = useVirtualizer({
+    count: shown,
+    getScrollElement: () => box.current,
+    estimateSize: () => 36,
+    overscan: 12,
+    initialRect: { width: 900, height: FIRST_ROWS * 36 },
+    getItemKey: (index) => rows[index]?.frame ?? index,
+  });
+  const scrollTo = useCallback(
+    (index: number) => {
+      if (index >= FIRST_ROWS) setAll(true);
+      virtual.scrollToIndex(index, { align: "auto" });
+    },
+    [virtual],
+  );
+  const toggle = (frame: number) => {
+    const next = new Set(open);
+    if (!next.delete(frame)) next.add(frame);
+    setOpen(next);
+  };
+  const onChoose = (index: number, how: "only" | "add" | "extend") => {
+    const row = rows[index];
+    if (row) select(row.frame, how, order);
+  };
+  const { active, setActive, body, onKeyDown } = useRowFocus({ count: rows.length, scrollTo, onChoose });
+  // Opened rows are taller than assumed; while some are open all shown rows stand in the page.
+  const virtualised = all && open.size === 0;
+  const items = virtualised
+    ? virtual.getVirtualItems().map((item) => item.index)
+    : Array.from({ length: shown }, (_, index) => index);
+  const first = virtual.getVirtualItems()[0];
+  const last = virtual.getVirtualItems().at(-1);
+  const before = virtualised && first ? first.start : 0;
+  const after = virtualised && last ? virtual.getTotalSize() - last.end : 0;
+  const dropped = result?.dropped.length ?? 0;
+  return (
+    <section aria-labelledby={id} className="mt-9">
+      <BlockHead
+        id={id}
+        title={
+          dropped > 0
+            ? `${plural(rows.length, "conformer")} and ${rows.length === 1 ? "its" : "their"} ${plural(dropped, "repeat")}`
+            : plural(rows.length, "conformer")
+        }
+      >
+        {tools}
+      </BlockHead>
+      <div ref={box} className={`relative ${all ? "max-h-[min(70vh,44rem)] overflow-y-auto" : ""}`}>
+        <Table
+          role="grid"
+          aria-labelledby={id}
+          aria-rowcount={rows.length + 1}
+          aria-multiselectable="true"
+          onKeyDown={(event) => {
+            const row = (event.target as HTMLElement).closest<HTMLElement>("[data-row]");
+            const frame = row === event.target ? rows[Number(row?.dataset.row)]?.frame : undefined;
+            const opens = event.key === "ArrowRight";
+            if (frame !== undefined && (opens || event.key === "ArrowLeft") && open.has(frame) !== opens) {
+              event.preventDefault();
+              toggle(frame);
+            } else onKeyDown(event);
+          }}
+        >
+          <thead className="sticky top-0 z-1 bg-paper">
+            <tr aria-rowindex={1}>
+              <Th>Conformer</Th>
+              <Th align="right" className={MID}>
+                Frame
+              </Th>
+              <Th align="right" unit="kcal/mol" sort="up">
+                Relative energy
+              </Th>
+              <Th align="right">Degeneracy</Th>
+              <Th align="right" unit="RMSD, Å" className={MID}>
+                To its mirror image
+              </Th>
+              <Th>Found</Th>
+            </tr>
+          </thead>
+          <tbody ref={body}>
+            {before > 0 ? <Space height={before} /> : null}
+            {items.map((index) => {
+              const row = rows[index];
+              return row ? (
+                <KeptRow
+                  key={row.frame}
+                  row={row}
+                  index={index}
+                  most={most}
+                  repeats={repeats.get(row.frame) ?? NO_REPEATS}
+                  open={open.has(row.frame)}
+                  selected={chosen.has(row.frame)}
+                  tabbed={index === active}
+                  onToggle={() => toggle(row.frame)}
+                  onFocus={() => setActive(index)}
+                  onChoose={onChoose}
+                  onHover={hover}
+                />
+              ) : null;
+            })}
+            {after > 0 ? <Space height={after} /> : null}
+          </tbody>
+          {shown < rows.length ? (
+            <tfoot>
+              <tr className="border-b border-rule text-ink-2">
+                <Td colSpan={6}>{formatCount(rows.length - shown)} more</Td>
+              </tr>
+            </tfoot>
+          ) : null}
+        </Table>
+      </div>
+      {rows.length > FIRST_ROWS ? (
+        <p className="mt-2 text-xs">
+          <button type="button" className={linkClass} onClick={() => setAll(!all)}>
+            {all ? `Show the first ${FIRST_ROWS} only` : `Show all ${formatCount(rows.length)}`}
+          </button>
+        </p>
+      ) : null}
+    </section>
+  );
+}
+
+function Space({ height }: { height: number }) {
+  return (
+    // biome-ignore lint/a11y/noAriaHiddenOnFocusable: it is no control and takes no focus
+    <tr aria-hidden="true">
+      <td height={height} colSpan={6} className="p-0" />
+    </tr>
+  );
+}
+
+function KeptRow({
+  row,
+  index,
+  most,
+  repeats,
+  open,
+  selected,
+  tabbed,
+  onToggle,
+  onFocus,
+  onChoose,
+  onHover,
+}: {
+  row: ConformerRow;
+  index: number;
+  most: number;
+  repeats: readonly DroppedFrame[];
+  open: boolean;
+  selected: boolean;
+  tabbed: boolean;
+  onToggle: () => void;
+  onFocus: () => void;
+  onChoose: (index: number, how: "only" | "add" | "extend") => void;
+  onHover: (frame: number | null) => void;
+}) {
+  const click = (event: MouseEvent) => {
+    if ((event.target as HTMLElement).closest("button")) return;
+    onChoose(index, event.shiftKey ? "extend" : event.ctrlKey || event.metaKey ? "add" : "only");
+  };
+  return (
+    <>
+      <Tr
+        data-row={index}
+        aria-rowindex={index + 2}
+        selected={selected}
+        tabIndex={tabbed ? 0 : -1}
+        className={`cursor-pointer select-none hover:bg-sunk ${selected ? "hover:bg-mark-wash" : ""}`}
+        onFocus={onFocus}
+        onClick={click}
+        onMouseDown={(event) => event.shiftKey && event.preventDefault()}
+        onPointerEnter={() => onHover(row.frame)}
+        onPointerLeave={() => onHover(null)}
+      >
+        <Td>
+          <span className="inline-flex items-center gap-1">
+            {repeats.length > 0 ? (
+              <IconButton
+                label={`${plural(repeats.length, "repeat")} of ${row.name}`}
+                aria-expanded={open}
+                className="-ml-2"
+                tabIndex={tabbed ? 0 : -1}
+                onClick={onToggle}
+              >
+                {open ? <ChevronDown aria-hidden="true" /> : <ChevronRight aria-hidden="true" />}
+              </IconButton>
+            ) : (
+              <span className="-ml-2 size-7 pointer-coarse:size-11" />
+            )}
+            <b className="font-semibold">{row.name}</b>
+          </span>
+        </Td>
+        <Td align="right" className={MID}>
+          {row.frame}
+        </Td>
+        <Td align="right">{formatEnergy(row.relativeEnergy)}</Td>
+        <Td align="right">
+          <DegeneracyBadge value={row.degeneracy} />
+        </Td>
+        <Td align="right" className={MID}>
+          {row.upperBound ? "to " : ""}
+          {formatRmsd(row.mirrorRmsd)}
+        </Td>
+        <Td>
+          <span className="flex items-center gap-3">
+            <span className="w-18 shrink-0 text-right max-sm:w-9">
+              <span className={MID}>found </span>
+              {row.found}×
+            </span>
+            <svg
+              aria-hidden="true"
+              width="100%"
+              height="8"
+              className="block min-w-8 max-w-32 overflow-visible"
+            >
+              <rect
+                x="0.5"
+                y="0.5"
+                width={`${(100 * row.found) / most}%`}
+                height="7"
+                className="fill-none stroke-edge"
+              />
+            </svg>
+          </span>
+        </Td>
+      </Tr>
+      {open ? (
+        <tr className="border-b border-rule bg-sunk">
+          <td colSpan={6} className="px-3 py-4 sm:pr-4 sm:pl-9">
+            <Repeats row={row} repeats={repeats} />
+          </td>
+        </tr>
+      ) : null}
+    </>
+  );
+}
+
+function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly DroppedFrame[] }) {
+  const { show, selected } = useWorkbench();
+  const [all, setAll] = useState(false);
+  const shown = all ? repeats : repeats.slice(0, FIRST_REPEATS);
+  return (
+    <div className="grid gap-3">
+      <p>
+        {plural(repeats.length, "frame repeats", "frames repeat")} <b className="font-semibold">{row.name}</b>
+        . They add to “found”, never to the population.
+      </p>
+      <Table aria-label={`Frames that repeat ${row.name}`} className="[&_td]:h-8">
+        <thead>
+          <tr>
+            <Th align="right">Frame</Th>
+            <Th align="right" unit="Å">
+              RMSD
+            </Th>
+            <Th align="right" unit="kcal/mol" className={MID}>
+              Energy above {row.name}
+            </Th>
+            <Th>As</Th>
+            <Th>
+              <span className="sr-only">View</span>
+            </Th>
+          </tr>
+        </thead>
+        <tbody>
+          {shown.map((frame) => (
+            <tr key={frame.frame} className="border-b border-rule">
+              <Td align="right">{frame.frame}</Td>
+              <Td align="right">
+                {frame.upperBound ? "to " : ""}
+                {formatRmsd(frame.rmsd)}
+              </Td>
+              <Td align="right" className={MID}>
+                {formatEnergy(frame.energyDifference)}
+              </Td>
+              <Td>{frame.mirror ? "mirror image" : "same hand"}</Td>
+              <Td align="right">
+                {selected.length === 2 && selected[0] === row.frame && selected[1] === frame.frame ? (
+                  <span className="text-ink-3">Laid over</span>
+                ) : (
+                  <TextButton onClick={() => show([row.frame, frame.frame])}>
+                    Lay over<span className="sr-only"> frame {frame.frame}</span>
+                  </TextButton>
+                )}
+              </Td>
+            </tr>
+          ))}
+        </tbody>
+      </Table>
+      {repeats.length > FIRST_REPEATS ? (
+        <p className="text-xs text-ink-3">
+          {shown.length} of {formatCount(repeats.length)} ·{" "}
+          <TextButton onClick={() => setAll(!all)}>{all ? "show fewer" : "show all"}</TextButton>
+        </p>
+      ) : null}
+    </div>
+  );
+}

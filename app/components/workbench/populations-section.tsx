@@ -1,0 +1,197 @@
+import { useDeferredValue, useMemo } from "react";
+import { href } from "react-router";
+import { CumulativePopulation } from "~/components/charts/cumulative-population";
+import { EnergyAgainstRmsd } from "~/components/charts/energy-against-rmsd";
+import { EnergyLadder } from "~/components/charts/energy-ladder";
+import { MeasureDistribution } from "~/components/charts/measure-distribution";
+import type { Choose } from "~/components/charts/plot";
+import { Finding, SectionHead } from "~/components/ui/finding";
+import { TextLink } from "~/components/ui/text-link";
+import { formatCount, plural } from "~/lib/format";
+import { measureHistogram } from "~/lib/measure/histogram";
+import { measureKind, measureLabel, measureValue } from "~/lib/measure/measure";
+import { outsideWindow } from "~/lib/workbench/conformers";
+import { cumulativePopulation } from "~/lib/workbench/cumulative";
+import { populationsFinding, windowFinding } from "~/lib/workbench/findings";
+import { energyLadder } from "~/lib/workbench/ladder";
+import { POPULATION_WORDS } from "~/lib/workbench/recipe-words";
+import { ConformerTable, type MeasureColumn } from "./conformer-table";
+import { PopulationSettings } from "./population-settings";
+import { OutdatedNote, SectionState } from "./section-state";
+import { ThermoFigures } from "./thermo-figures";
+import { MAX_MEASURED, useWorkbench } from "./workbench-context";
+
+/** Populations at a temperature: what carries the ensemble, its thermodynamics, four figures, and the table. */
+export function PopulationsSection() {
+  const { rows, result, sift, temperatureK, state, populations, level } = useWorkbench();
+  const outside = useMemo(() => outsideWindow(rows), [rows]);
+  const finding = populationsFinding(rows, temperatureK);
+  const lines =
+    sift && result
+      ? windowFinding(rows, outside, state.windowKcal, temperatureK, sift.recipe, result.outsideWindow.length)
+      : [];
+  return (
+    <section aria-labelledby="section-title">
+      <SectionHead
+        id="section-title"
+        title="Populations"
+        aside={<TextLink to={`${href("/methods")}#populations`}>How this is computed</TextLink>}
+      />
+      {result === null ? (
+        <SectionState />
+      ) : (
+        <>
+          <Finding more={[finding.second, ...lines].filter(Boolean).join(" ") || undefined}>
+            {finding.text}
+          </Finding>
+          <OutdatedNote />
+          {populations ? (
+            <>
+              <PopulationSettings />
+              <p className="mt-3 max-w-[46rem] text-xs text-ink-3">
+                {POPULATION_WORDS[level?.energyKind ?? "electronic"]}. {populations.weights.reason}
+                {level?.energyKind === "electronic"
+                  ? " Zero-point and vibrational contributions are not in them; folded shapes often come out too populated."
+                  : ""}
+              </p>
+              <ThermoFigures populations={populations} />
+              <Charts />
+            </>
+          ) : null}
+          <Table />
+        </>
+      )}
+    </section>
+  );
+}
+
+/** The four figures, drawn when the slider lets them: the numbers above come first. */
+function Charts() {
+  const workbench = useWorkbench();
+  const rows = useDeferredValue(workbench.rows);
+  const temperatureK = useDeferredValue(workbench.temperatureK);
+  const { state, selected, select, reference, column, measured } = workbench;
+  const windowKcal = state.windowKcal;
+  const outside = useMemo(() => outsideWindow(rows), [rows]);
+  const ladder = useMemo(
+    () => energyLadder(rows, temperatureK, windowKcal),
+    [rows, temperatureK, windowKcal],
+  );
+  const cumulative = useMemo(() => cumulativePopulation(rows), [rows]);
+  const chosen = useMemo(() => new Set(selected), [selected]);
+  const order = useMemo(() => rows.map((row) => row.frame), [rows]);
+  const rmsd = useMemo(
+    () => (column ? Array.from(column.rmsd, (value, k) => (k < column.known ? value : null)) : null),
+    [column],
+  );
+  const choose: Choose = (frame, keys) =>
+    select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order);
+  if (!ladder || !cumulative) return null;
+  return (
+    <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
+      <EnergyLadder
+        rows={rows}
+        ladder={ladder}
+        outside={outside}
+        windowKcal={windowKcal}
+        temperatureK={temperatureK}
+        selected={chosen}
+        onChoose={choose}
+      />
+      <CumulativePopulation cumulative={cumulative} windowKcal={windowKcal} top={ladder.top} />
+      {rows.length > 1 ? (
+        <EnergyAgainstRmsd
+          rows={rows}
+          rmsd={rmsd ?? []}
+          reference={reference?.name ?? "c1"}
+          top={ladder.top}
+          selected={chosen}
+          onChoose={choose}
+          note={
+            rmsd === null
+              ? "Distances follow when the structures are here."
+              : measured.size < rows.length
+                ? `Of the ${formatCount(MAX_MEASURED)} lowest conformers.`
+                : undefined
+          }
+        />
+      ) : null}
+      <Distribution onChoose={choose} />
+    </div>
+  );
+}
+
+/** The picked distance, angle or torsion over the ensemble, or how to pick one. */
+function Distribution({ onChoose }: { onChoose: Choose }) {
+  const { rows } = useWorkbench();
+  const settled = useDeferredValue(rows);
+  const measure = useMeasure();
+  const histogram = useMemo(() => {
+    if (!measure) return null;
+    const known = settled.filter((row) => measure.fetched[row.index]);
+    return {
+      known,
+      made: measureHistogram(
+        measure.kind,
+        known.map((row) => measure.values[row.index] ?? null),
+        known.map((row) => row.population ?? 0),
+        known.map((row) => row.degeneracy),
+      ),
+    };
+  }, [settled, measure]);
+  if (!measure || !histogram) {
+    return (
+      <div className="min-w-0">
+        <h3 className="mb-2 text-sm font-semibold">Distance, angle or torsion</h3>
+        <p className="max-w-read text-ink-2">
+          Pick two, three or four atoms in the view, or name them below it, to read their distance, angle or
+          torsion in every conformer and see how it spreads over the ensemble.
+        </p>
+      </div>
+    );
+  }
+  const left = settled.length - histogram.known.length;
+  return (
+    <MeasureDistribution
+      histogram={histogram.made}
+      kind={measure.kind}
+      name={measure.label}
+      rows={histogram.known}
+      onChoose={onChoose}
+      note={
+        [
+          left > 0
+            ? `${plural(left, "conformer")} not measured yet, or beyond the ${formatCount(MAX_MEASURED)} lowest.`
+            : null,
+          measure.kind === "torsion" && histogram.known.some((row) => row.degeneracy === 2)
+            ? "A conformer that stands for a mirror pair counts half at each sign."
+            : null,
+        ]
+          .filter(Boolean)
+          .join(" ") || undefined
+      }
+    />
+  );
+}
+
+function Table() {
+  const measure = useMeasure();
+  return <ConformerTable measure={measure} />;
+}
+
+/** The picked quantity in every conformer whose coordinates are here. */
+function useMeasure(): (MeasureColumn & { fetched: readonly boolean[] }) | null {
+  const { ensemble, state, result, coordinates } = useWorkbench();
+  return useMemo(() => {
+    const picked = state.atoms.filter((atom) => atom < ensemble.atoms);
+    const kind = measureKind(picked);
+    if (kind === null || result === null) return null;
+    const at = result.kept.map((conformer) => coordinates.positions.get(conformer.frame));
+    return {
+      kind,
+      label: measureLabel(ensemble.elements, picked),
+      values: at.map((positions) => (positions ? measureValue(positions, picked) : null)),
+      fetched: at.map((positions) => positions !== undefined),
+    };
+  }, [ensemble, state.atoms, result, coordinates.positions]);
+}

@@ -1,0 +1,109 @@
+import type { ReactNode } from "react";
+import { href, useLocation } from "react-router";
+import { Button, ButtonLink } from "~/components/ui/button";
+import { ProgressBar } from "~/components/ui/progress-bar";
+import { Skeleton } from "~/components/ui/skeleton";
+import { StatePanel } from "~/components/ui/state-panel";
+import { formatCount, formatPercent, plural } from "~/lib/format";
+import type { SiftView } from "~/lib/views";
+import { useWorkbench } from "./workbench-context";
+
+/**
+ * What a section shows while it has no result: the question that comes first, the sift under way, or how to start one.
+ * `null` means that there is a result to show.
+ */
+export function SectionState({ start }: { start?: ReactNode }) {
+  const { ensemble, sift, result } = useWorkbench();
+  const { search } = useLocation();
+  if (result !== null) return null;
+  const intake = { pathname: href("/ensembles/:id/intake", { id: ensemble.id }), search };
+  if (sift !== null && (sift.status === "queued" || sift.status === "running"))
+    return <Running sift={sift} />;
+  if (ensemble.accepted === 0) {
+    return (
+      <StatePanel
+        tone="held"
+        title={ensemble.openQuestions > 0 ? "Intake comes first" : "No frame is accepted"}
+        className="mt-6"
+        actions={<ButtonLink to={intake}>Go to intake</ButtonLink>}
+      >
+        <p>
+          {ensemble.openQuestions > 0
+            ? `Nothing is computed before ${plural(ensemble.openQuestions, "question is", "questions are")} answered there.`
+            : `All ${formatCount(ensemble.held)} frames are held; intake says why, frame by frame.`}
+        </p>
+      </StatePanel>
+    );
+  }
+  if (sift?.status === "failed") {
+    return (
+      <StatePanel tone="danger" title="The sift failed" className="mt-6" actions={start}>
+        <p>
+          {sift.error ?? "It ended without a result."} The frames and their energies are as they were; ask
+          again.
+        </p>
+      </StatePanel>
+    );
+  }
+  return (
+    <StatePanel
+      title={sift?.status === "cancelled" ? "The sift was cancelled" : "Not sifted yet"}
+      className="mt-6"
+      actions={
+        start ?? (
+          <ButtonLink to={{ pathname: href("/ensembles/:id/distinct-set", { id: ensemble.id }), search }}>
+            Go to the distinct set
+          </ButtonLink>
+        )
+      }
+    >
+      <p>
+        {plural(ensemble.accepted, "frame is", "frames are")} accepted. Which of them differ is found by
+        comparing their shapes.
+      </p>
+    </StatePanel>
+  );
+}
+
+function Running({ sift }: { sift: SiftView }) {
+  const { ensemble } = useWorkbench();
+  return (
+    <div className="mt-6 grid gap-6" aria-busy="true">
+      <div className="max-w-read">
+        <p role="status" className="mb-2 text-ink-2">
+          {sift.status === "queued"
+            ? `The sift of ${plural(ensemble.accepted, "frame")} waits for its turn.`
+            : `Comparing ${plural(ensemble.accepted, "frame")}, ${formatPercent(sift.progress)} done.`}
+        </p>
+        <ProgressBar share={sift.progress} label="Sift" />
+      </div>
+      <Skeleton className="h-16 w-full" />
+      <div className="grid gap-6 xl:grid-cols-2">
+        <Skeleton className="h-72 w-full" />
+        <Skeleton className="h-72 w-full max-xl:hidden" />
+      </div>
+    </div>
+  );
+}
+
+/** Frames were held, released or read again since: the result shown is of the frames as they were. */
+export function OutdatedNote({ onAgain, busy }: { onAgain?: () => void; busy?: boolean }) {
+  const { sift, result, ensemble } = useWorkbench();
+  if (sift === null || result === null || sift.current) return null;
+  return (
+    <StatePanel
+      tone="held"
+      title="These results are of the frames as they were"
+      className="mt-4"
+      actions={
+        ensemble.mayCompute && onAgain ? (
+          <Button onClick={onAgain} disabled={busy}>
+            Sift the frames as they are
+          </Button>
+        ) : undefined
+      }
+    >
+      <p>Frames were held, released or read again after this sift.</p>
+    </StatePanel>
+  );
+}
