@@ -66,16 +66,13 @@ function hasTwins(graph: Graph, colours: Int32Array, neighbours: ArrayLike<numbe
   return false;
 }
 
-/** P(=O)OH, S(=O)OH and the like: which oxygen carries the hydrogen is no configuration. */
+/** P(=O)OH, S(=O)OH and the like: which of two oxygens (or sulfurs) carries the hydrogen is no configuration. */
 function isOxoAcid(graph: Graph, atom: number): boolean {
   if (!pyramidal.has(graph.elements[atom]!)) return false;
-  let bare = 0;
-  for (const b of neighboursOf(graph, atom)) {
-    const z = graph.elements[b]!;
-    const others = [...neighboursOf(graph, b)].filter((c) => c !== atom);
-    if ((z === 8 || z === 16) && others.every((c) => graph.elements[c] === 1)) bare += 1;
-  }
-  return bare >= 2;
+  const bare = [...neighboursOf(graph, atom)].filter((b) =>
+    [...neighboursOf(graph, b)].every((c) => c === atom || graph.elements[c] === 1),
+  );
+  return [8, 16].some((z) => bare.filter((b) => graph.elements[b] === z).length > 1);
 }
 
 /**

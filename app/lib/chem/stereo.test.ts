@@ -118,6 +118,7 @@ describe("findStereoUnits: where a configuration can be", () => {
     ["deuterium counts", "CC(O)[2H]", ["centre"]],
     ["sulfoxide", "CS(=O)CC", ["centre"]],
     ["phosphine", "CP(CC)CCC", ["centre"]],
+    ["a thiophosphoric acid, oxygen and sulfur differ", "CP(=S)(O)OC", ["centre"]],
     ["phosphonate ester", "CP(=O)(CC)OC", ["centre"]],
     ["2-butene", "CC=CC", ["double-bond"]],
     ["imine", "CC=NC", ["double-bond"]],

@@ -527,6 +527,24 @@ describe("a second batch", () => {
   });
 });
 
+it("a molecule met after thousands of other bond sets is kept, its hands unknown", () => {
+  const random = mulberry(7);
+  const cloud = (frame: number): ClassifierFrame => ({
+    frame,
+    file: "a.xyz",
+    line: frame,
+    elements: new Uint8Array(7).fill(14),
+    isotopes: null,
+    positions: Float64Array.from({ length: 21 }, (_, k) => 3 * (k % 7) * 0.6 + 2.4 * random()),
+  });
+  const classifier = new FrameClassifier();
+  for (let f = 1; f <= 9000; f++) classifier.add(cloud(f));
+  classifier.add(frameOf(molecule("C[C@H](O)F"), 9001));
+  const result = classifier.finish({ preferFrames: [9001] });
+  expect(result.frames[9000]!.state).toBe("remarked");
+  expect(result.chirality).toBe("unsure");
+});
+
 it("another numbering of the atoms changes nothing but numbers", () => {
   const [one, other] = [molecule("OC(=O)[C@H](O)[C@@H](O)C(=O)O"), molecule("OC(=O)[C@H](O)[C@H](O)C(=O)O")];
   const n = one.graph.elements.length;

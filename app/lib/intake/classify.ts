@@ -55,8 +55,13 @@ export class FrameClassifier {
    *
    * @returns a number for its sequence of elements and isotopes, from 0 in order of appearance, and the frame's index
    *   among those of the same sequence: the place for its coordinates
+   * @throws RangeError on a frame without atoms, or with another number of coordinates than atoms
    */
   add(frame: ClassifierFrame): { shape: number; indexInShape: number } {
+    const atoms = frame.elements.length;
+    if (atoms === 0 || frame.positions.length !== 3 * atoms) {
+      throw new RangeError(`Frame ${frame.frame}: ${frame.positions.length} coordinates for ${atoms} atoms.`);
+    }
     const trace = this.kinds.trace(frame.elements, frame.isotopes, frame.positions);
     const energy = frame.energy ?? null;
     this.records.push({

@@ -170,19 +170,22 @@ export class FrameJudge {
     return { code: "X40", reason: "other-configuration", message, hint: this.hintFor(different) };
   }
 
+  /** An NH+ or =NH turns over by way of its hydrogen: there a person may well release the frame. */
   private hintFor(different: readonly number[]): string {
-    const ammonium = different
-      .map((u) => this.units[u]!)
-      .flatMap((unit) => (unit.kind === "centre" && this.isAmmonium(unit.atom) ? [unit.atom] : []))[0];
-    if (ammonium === undefined) return OWN_ENSEMBLE;
-    const name = atomName(this.graph.elements, ammonium);
-    return `${name} carries a hydrogen and inverts as soon as that comes off: release the frame if it does.`;
-  }
-
-  private isAmmonium(atom: number): boolean {
     const { offsets, neighbours, elements } = this.graph;
-    if (elements[atom] !== 7) return false;
-    return neighbours.subarray(offsets[atom]!, offsets[atom + 1]!).some((b) => elements[b] === 1);
+    const withHydrogen = different
+      .flatMap((u) => {
+        const unit = this.units[u]!;
+        return unit.kind === "centre" ? [unit.atom] : unit.atoms;
+      })
+      .find(
+        (atom) =>
+          elements[atom] === 7 &&
+          neighbours.subarray(offsets[atom]!, offsets[atom + 1]!).some((b) => elements[b] === 1),
+      );
+    if (withHydrogen === undefined) return OWN_ENSEMBLE;
+    const name = atomName(elements, withHydrogen);
+    return `${name} carries a hydrogen and inverts as soon as that comes off: release the frame if it does.`;
   }
 }
 

@@ -56,8 +56,8 @@ export class FrameRemarks {
       const message = "All z are zero though the molecule is not flat: it looks like a drawing.";
       remarks.push({ code: "X29", message });
     }
-    const flat = record.hands && this.openHands(record.hands);
-    if (flat) remarks.push(flat);
+    const open = record.hands ? this.openHands(record.hands) : this.notCompared();
+    if (open) remarks.push(open);
     const near = record.near && this.nearInWords(record.near);
     if (near) remarks.push({ code: "X41", message: near });
     return remarks;
@@ -77,6 +77,13 @@ export class FrameRemarks {
       this.open.set(hands, finding);
     }
     return finding;
+  }
+
+  /** Hands are kept for the first bond sets only; a file with thousands of them is no ensemble. */
+  private notCompared(): Finding | null {
+    if (this.units.length === 0) return null;
+    const message = "The configuration was not compared: too many molecules came before in these files.";
+    return { code: "X40", message };
   }
 
   private nearInWords(near: NearPairs): string | null {

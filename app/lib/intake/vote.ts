@@ -1,5 +1,6 @@
 import type { StereoUnit } from "../chem/refine.ts";
 import { ConfigurationComparer, isDouble, toConfiguration } from "../chem/stereo.ts";
+import { findStereoUnits } from "../chem/stereo-units.ts";
 import type { BondKind, Hands } from "./frame-kinds.ts";
 import type { FrameRecord, MoleculeGroup } from "./frame-record.ts";
 
@@ -104,6 +105,10 @@ function commonConfiguration(
   kind: BondKind,
   records: readonly FrameRecord[],
 ): MoleculeGroup["configuration"] {
+  if (!kind.units) {
+    const centres = findStereoUnits(kind.graph).filter((unit) => unit.kind === "centre");
+    return toConfiguration(centres, new Int8Array(centres.length));
+  }
   const real = realUnits(kind);
   const units: StereoUnit[] = real.map((u) => kind.units![u]!);
   if (units.length === 0) return toConfiguration([], []);
