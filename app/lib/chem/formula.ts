@@ -2,8 +2,8 @@ import { symbolOf } from "./elements.ts";
 
 /**
  * Molecular formula in Hill order: carbon, hydrogen, then the rest by symbol; all by symbol where there is no carbon
- * (Hill, J. Am. Chem. Soc. 1900, 22, 478). Isotopes stand apart as `[13C]`, deuterium and tritium as `D` and `T`,
- * each directly after its element. Dummies (atomic number 0) are left out.
+ * (J. Am. Chem. Soc. 1900, 22, 478, from memory). Isotopes stand apart as `[13C]`, deuterium and tritium as `D` and
+ * `T`, each directly after its element. Dummies (atomic number 0) are left out.
  *
  * @param isotopes mass number per atom, 0 where none is given
  * @example hillFormula([8, 6, 1, 1, 1, 1]) // "CH4O"

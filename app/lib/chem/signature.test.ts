@@ -98,7 +98,7 @@ describe("graphSignature and isomorphism", () => {
     expect(isomorphism(graph(a), graph(b))).toBeNull();
   });
 
-  // check-values.md 5: the pair that refinement cannot tell apart, hydrogens included.
+  // The pair that refinement cannot tell apart, hydrogens included (derived; it is the textbook case).
   it("decalin and 1,1'-bicyclopentyl share a signature and are told apart all the same", () => {
     const decalin = graph("C1CCCC2C1CCCC2");
     const bicyclopentyl = graph("C1CCCC1C1CCCC1");

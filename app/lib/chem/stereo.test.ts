@@ -50,7 +50,7 @@ describe("unitValue", () => {
   const corners = [0, 0, 0, 1, 1, 1, 1, -1, -1, -1, 1, -1, -1, -1, 1];
   const four: StereoUnit = { kind: "centre", atom: 0, neighbours: [1, 2, 3, 4] };
 
-  // check-values.md 5: 4 / (3 sqrt 3).
+  // Derived: unit vectors to alternate corners of a cube give 4 / (3 sqrt 3).
   it("is 0.7698 in an ideal tetrahedron, by four neighbours and by three", () => {
     expect(Math.abs(unitValue(four, corners))).toBeCloseTo(0.769800359, 9);
     const three: StereoUnit = { kind: "centre", atom: 0, neighbours: [1, 2, 3] };
@@ -196,7 +196,7 @@ describe("the same configuration", () => {
     expect(comparer.invariant(first)).not.toBe(comparer.invariant(signs));
   });
 
-  // Inositols: 64 patterns of six ring carbons are 9 isomers, 7 of them achiral and one pair of enantiomers (handbook fact).
+  // Inositols: 64 patterns of six ring carbons are 9 isomers, 7 of them achiral and one pair of enantiomers (textbook fact, from memory).
   it("inositol has nine isomers", () => {
     const m = molecule("OC1C(O)C(O)C(O)C(O)C1O");
     const units = unitsOf(m);
