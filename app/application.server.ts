@@ -35,6 +35,21 @@ export function clientAddress(peer: string, forwarded: string | undefined, trust
   return /^[0-9a-f.:]{2,45}$/i.test(entry) ? entry : peer;
 }
 
+/**
+ * The router's handler. An Origin that is no address would be answered by the router itself, before any middleware and
+ * without our headers; as "null" it comes to our own check, which refuses it all the same.
+ */
+function makeHandler(build: ServerBuild | (() => Promise<ServerBuild>), mode: string) {
+  const handle = createRequestHandler(build, mode);
+  return (request: Request, context: RouterContextProvider): Promise<Response> => {
+    const origin = request.headers.get("origin");
+    if (origin === null || URL.canParse(origin)) return handle(request, context);
+    const headers = new Headers(request.headers);
+    headers.set("origin", "null");
+    return handle(new Request(request, { headers }), context);
+  };
+}
+
 function makeContext(address: string): RouterContextProvider {
   const context = new RouterContextProvider();
   context.set(addressContext, address);
@@ -52,7 +67,7 @@ export const application = {
   bodyTooLarge,
   clientAddress,
   makeContext,
-  makeHandler: (build: ServerBuild, mode: string) => createRequestHandler(build, mode),
+  makeHandler,
   /** For what the router does not answer: built assets, addresses that cannot be read. */
   plainHeaders: () => securityHeaders({ nonce: "", secure: env().secure }),
 };

@@ -12,6 +12,9 @@ function loggableActor(actor: Actor): Record<string, string> {
   return actor.kind === "token" ? { ...known, tokenId: actor.tokenId } : known;
 }
 
+/** Only `npm run dev`: built code holds no trace of it, tests check what production sends. */
+const isDevelopment = () => import.meta.env?.DEV === true && env().NODE_ENV === "development";
+
 /**
  * First of the root middleware: names the request, writes its line in the log, and puts the security headers on
  * whatever comes back, refusals and failures included.
@@ -27,7 +30,7 @@ export const requestMiddleware: MiddlewareFunction<Response> = async ({ request,
 
   const response = await next();
 
-  const policy = { nonce, secure: env().secure, development: import.meta.env?.DEV === true };
+  const policy = { nonce, secure: env().secure, development: isDevelopment() };
   for (const [name, value] of Object.entries(securityHeaders(policy))) response.headers.set(name, value);
   response.headers.set("x-request-id", requestId);
   // What is shown depends on who asks, down to the error pages: nothing of it is kept on the way.

@@ -1,5 +1,4 @@
 import {
-  createRequestHandler,
   matchRoutes,
   type RouteObject,
   type ServerBuild,
@@ -133,14 +132,14 @@ async function makeBuild(branch: string[]): Promise<ServerBuild> {
   } as unknown as ServerBuild;
 }
 
-const handlers = new Map<string, Promise<ReturnType<typeof createRequestHandler>>>();
+const handlers = new Map<string, Promise<ReturnType<typeof application.makeHandler>>>();
 
 function handlerFor(pathname: string) {
   const branch = branchOf(pathname);
   const key = branch.join(" ");
   let handler = handlers.get(key);
   if (handler === undefined) {
-    handler = makeBuild(branch).then((build) => createRequestHandler(build, "production"));
+    handler = makeBuild(branch).then((build) => application.makeHandler(build, "production"));
     handlers.set(key, handler);
   }
   return handler;
