@@ -92,6 +92,8 @@ export interface IntakeView {
   /** Frames that are held or remarked, up to 500 of each. */
   held: FrameView[];
   remarked: FrameView[];
+  /** Frames held for nothing but an open question, all of them. */
+  waiting: number;
   messages: IntakeMessage[];
   questions: IntakeQuestion[];
 }

@@ -3,7 +3,7 @@ import { z } from "zod";
 import { db } from "../../db/client.server.ts";
 import { frames, intakeMessages, questions } from "../../db/schema.server.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
-import type { IntakeMessage, IntakeQuestion, QuestionOption } from "../../lib/intake/report.ts";
+import type { HoldReason, IntakeMessage, IntakeQuestion, QuestionOption } from "../../lib/intake/report.ts";
 import type { FrameView, IntakeView } from "../../lib/views.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { frameStrip } from "./accepted-frames.server.ts";
@@ -80,15 +80,25 @@ async function findFrames(ensembleId: string, state: "held" | "remarked"): Promi
   }));
 }
 
+/** Frames that are held for nothing but an open question. */
+async function countWaiting(ensembleId: string): Promise<number> {
+  const reason: HoldReason = "waits-for-answer";
+  return db.$count(
+    frames,
+    and(eq(frames.ensembleId, ensembleId), eq(frames.state, "held"), eq(frames.holdReason, reason)),
+  );
+}
+
 /** The intake report of an ensemble. */
 export async function loadIntake(options: { actor: Actor; ensembleId: string }): Promise<IntakeView> {
   const { ensembleId } = await accessEnsemble(options.actor, "read", options.ensembleId);
-  const [strip, held, remarked, messages, asked] = await Promise.all([
+  const [strip, held, remarked, waiting, messages, asked] = await Promise.all([
     frameStrip(ensembleId),
     findFrames(ensembleId, "held"),
     findFrames(ensembleId, "remarked"),
+    countWaiting(ensembleId),
     findMessages(ensembleId),
     findQuestions(ensembleId),
   ]);
-  return { strip, held, remarked, messages, questions: asked };
+  return { strip, held, remarked, waiting, messages, questions: asked };
 }
