@@ -9,6 +9,7 @@ import { searchOf, writeState } from "~/lib/url-state";
 import type { EnsembleView, IntakeView, SiftView } from "~/lib/views";
 import { recipeLine } from "~/lib/workbench/recipe-words";
 import { stations } from "~/lib/workbench/stations";
+import { FilePanel } from "./file-panel";
 import { RenameEnsemble } from "./rename-ensemble";
 import { SectionRail } from "./section-rail";
 import { ViewPanel } from "./view-panel";
@@ -84,6 +85,7 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
           } ${asks ? "max-lg:order-2 max-lg:mt-9" : ""}`}
         >
           <ViewPanel held={held} />
+          {section === "intake" ? <FilePanel /> : null}
         </aside>
         <div className="min-w-0">{children}</div>
       </div>

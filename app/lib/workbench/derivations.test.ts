@@ -3,7 +3,7 @@ import { describe, expect, test } from "vitest";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { KeptConformer, SiftResult } from "../recipe/result.ts";
 import { distinctPopulations } from "../thermo/populations.ts";
-import type { EnsembleView } from "../views.ts";
+import type { EnsembleView, FrameView } from "../views.ts";
 import { conformerRows, frameRoles, outsideWindow } from "./conformers.ts";
 import { cumulativePopulation, withinWindow } from "./cumulative.ts";
 import {
@@ -18,6 +18,7 @@ import {
   windowFinding,
 } from "./findings.ts";
 import { frameStrip } from "./frame-strip.ts";
+import { framesWords, groupFrames, reasonWords } from "./intake-lists.ts";
 import { energyLadder, mergeLabels } from "./ladder.ts";
 import { methodsText, recipeLine, requestOf } from "./recipe-words.ts";
 import { clickSelection } from "./selection.ts";
@@ -278,13 +279,15 @@ describe("findings in words", () => {
   });
 
   test("intake", () => {
-    expect(intakeFinding(ensemble).text).toBe(
+    expect(intakeFinding(ensemble, 0).text).toBe(
       "400 frames read: 397 are accepted, 5 of them with a remark, and 3 are held.",
     );
-    expect(intakeFinding({ ...ensemble, accepted: 0, remarked: 0, held: 400, openQuestions: 2 }).text).toBe(
-      "400 frames read: 0 accepted and 400 held. Two questions come first; nothing is computed before they are answered.",
+    expect(
+      intakeFinding({ ...ensemble, accepted: 0, remarked: 0, held: 400, openQuestions: 2 }, 397).text,
+    ).toBe(
+      "400 frames read: 397 can be accepted and 3 are held for other reasons. Two questions come first; nothing is computed before they are answered.",
     );
-    expect(intakeFinding({ ...ensemble, accepted: 400, remarked: 0, held: 0 }).text).toBe(
+    expect(intakeFinding({ ...ensemble, accepted: 400, remarked: 0, held: 0 }, 0).text).toBe(
       "400 frames read: all are accepted.",
     );
   });
@@ -489,5 +492,43 @@ describe("what the view shows", () => {
     expect(frames).toHaveLength(300);
     expect(notDrawn).toBe(700);
     expect(caption.rest).toContain("the 300 most populated of 1000");
+  });
+});
+
+describe("lists of intake", () => {
+  const frame = (number: number, holdReason: string | null, note: string, releasable = false): FrameView => ({
+    number,
+    file: 0,
+    line: 1,
+    label: null,
+    state: holdReason === null ? "remarked" : "held",
+    holdReason,
+    note,
+    releasable,
+    showable: true,
+  });
+
+  test("frames with the same words stand together, those a person decides on by themselves", () => {
+    const groups = groupFrames([
+      frame(1, "waits-for-answer", "Waits.", true),
+      frame(2, "waits-for-answer", "Waits.", true),
+      frame(3, "far-off", "Far off.", true),
+      frame(4, "far-off", "Far off.", true),
+      frame(5, "other-species", "H25 moved."),
+    ]);
+    expect(groups.map((group) => group.frames.map((f) => f.number))).toEqual([[1, 2], [3], [4], [5]]);
+  });
+
+  test("runs of frames are drawn together", () => {
+    expect(framesWords([7])).toBe("Frame 7");
+    expect(framesWords([1, 2, 3, 7])).toBe("Frames 1 to 3, 7");
+    expect(framesWords([42, 77, 160])).toBe("Frames 42, 77, 160");
+    expect(framesWords([5, 4])).toBe("Frames 4, 5");
+    expect(framesWords([1, 3, 5, 7, 9, 11, 13, 15])).toBe("Frames 1, 3, 5, 7, 9, 11 and 2 more");
+  });
+
+  test("every reason has its words", () => {
+    expect(reasonWords("other-species")).toBe("Another species");
+    expect(reasonWords(null)).toBe("Held");
   });
 });

@@ -161,32 +161,38 @@ export function nearMirror(
   return found;
 }
 
-/** What intake says first. */
-export function intakeFinding(ensemble: EnsembleView): Finding {
+/**
+ * What intake says first.
+ *
+ * @param waiting frames held for nothing but an open question
+ */
+export function intakeFinding(ensemble: EnsembleView, waiting: number): Finding {
   const { frames, accepted, remarked, held, openQuestions } = ensemble;
-  const remark = remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark,`;
-  const can = openQuestions > 0 ? "can be accepted" : accepted === 1 ? "is accepted" : "are accepted";
   const read = `${plural(frames, "frame")} read:`;
   if (openQuestions > 0) {
-    const which =
-      openQuestions === 1
-        ? "One question comes first"
-        : `${capital(countWord(openQuestions))} questions come first`;
-    const until = openQuestions === 1 ? "it is answered" : "they are answered";
+    const first =
+      openQuestions === 1 ? "One question comes" : `${capital(countWord(openQuestions))} questions come`;
+    const other = held - waiting;
+    const parts = [
+      waiting > 0 ? `${formatCount(waiting)} can be accepted` : null,
+      accepted > 0 ? `${formatCount(accepted)} ${accepted === 1 ? "is" : "are"} accepted already` : null,
+      other > 0 ? `${formatCount(other)} ${other === 1 ? "is" : "are"} held for other reasons` : null,
+    ].filter((part) => part !== null);
     return {
-      text: `${read} ${formatCount(accepted)} accepted${remark} and ${formatCount(held)} held. ${which}; nothing is computed before ${until}.`,
+      text: `${read} ${joinWords(parts)}. ${first} first; nothing is computed before ${openQuestions === 1 ? "it is" : "they are"} answered.`,
       second: null,
     };
   }
   if (held === 0) {
-    const all = frames === 1 ? "it is accepted" : "all are accepted";
+    const remark = remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark`;
     return {
-      text: `${read} ${all}${remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark`}.`,
+      text: `${read} ${frames === 1 ? "it is accepted" : "all are accepted"}${remark}.`,
       second: null,
     };
   }
+  const remark = remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark,`;
   return {
-    text: `${read} ${formatCount(accepted)} ${can}${remark} and ${formatCount(held)} ${held === 1 ? "is" : "are"} held.`,
+    text: `${read} ${formatCount(accepted)} ${accepted === 1 ? "is" : "are"} accepted${remark} and ${formatCount(held)} ${held === 1 ? "is" : "are"} held.`,
     second: "A held frame is kept, and left out of every computation until somebody releases it.",
   };
 }

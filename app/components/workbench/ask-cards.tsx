@@ -1,0 +1,189 @@
+import { useState } from "react";
+import { href, useFetcher } from "react-router";
+import { SubmitButton } from "~/components/ui/button";
+import { TextField } from "~/components/ui/field";
+import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
+import { fixed, formatEnergy, withUnit } from "~/lib/format";
+import type { IntakeQuestion, QuestionOption as Option } from "~/lib/intake/report";
+import type { ActAnswer } from "./act-answer";
+
+/** What intake leaves open, one card a question; nothing is computed before they are answered. */
+export function AskCards({
+  ensembleId,
+  questions,
+  mayAnswer,
+}: {
+  ensembleId: string;
+  questions: readonly IntakeQuestion[];
+  mayAnswer: boolean;
+}) {
+  const open = questions.filter((question) => question.answered === undefined);
+  return (
+    <div className="mt-7 grid gap-5">
+      {open.map((question, k) => (
+        <AskCard
+          key={question.id}
+          ensembleId={ensembleId}
+          question={question}
+          count={`Question ${k + 1} of ${open.length}`}
+          mayAnswer={mayAnswer}
+        />
+      ))}
+    </div>
+  );
+}
+
+function AskCard({
+  ensembleId,
+  question,
+  count,
+  mayAnswer,
+}: {
+  ensembleId: string;
+  question: IntakeQuestion;
+  count: string;
+  mayAnswer: boolean;
+}) {
+  const fetcher = useFetcher<ActAnswer>();
+  const proposed = question.options.find((option) => option.proposed) ?? null;
+  const [choice, setChoice] = useState(proposed?.id ?? "");
+  const chosen = question.options.find((option) => option.id === choice);
+  const refused = fetcher.data && !fetcher.data.ok ? fetcher.data.message : undefined;
+  const named = question.code === "level";
+  return (
+    <fetcher.Form method="post" action={href("/ensembles/:id/intake", { id: ensembleId })}>
+      <input type="hidden" name="intent" value="answer" />
+      <input type="hidden" name="question" value={question.id} />
+      <QuestionCard
+        count={count}
+        title={question.text}
+        reason={question.reason}
+        footer={
+          mayAnswer ? (
+            <>
+              <SubmitButton pending={fetcher.state !== "idle"} disabled={!named && !chosen}>
+                {buttonWords(question, chosen)}
+              </SubmitButton>
+              <span className={refused ? "text-danger" : ""} role={refused ? "alert" : undefined}>
+                {refused ?? footWords(question)}
+              </span>
+            </>
+          ) : (
+            <span>An analyst or an owner of the team answers this.</span>
+          )
+        }
+      >
+        {named ? (
+          <LevelName question={question} proposed={proposed} />
+        ) : (
+          <>
+            <OptionHead question={question} />
+            {question.options.map((option) => (
+              <QuestionOption
+                key={option.id}
+                name="option"
+                value={option.id}
+                checked={choice === option.id}
+                onChange={setChoice}
+                title={option.text}
+                reason={option.detail}
+              >
+                <OptionFigures question={question} option={option} />
+              </QuestionOption>
+            ))}
+          </>
+        )}
+      </QuestionCard>
+    </fetcher.Form>
+  );
+}
+
+function buttonWords(question: IntakeQuestion, chosen: Option | undefined): string {
+  if (question.code === "level") return "Name the level";
+  if (!chosen) return "Choose first";
+  return question.code === "energy-unit" ? `Confirm ${chosen.text}` : `Use ${chosen.text}`;
+}
+
+function footWords(question: IntakeQuestion): string {
+  if (question.code === "energy-unit") return "The factor is printed in every report.";
+  if (question.code === "level") return "It keeps one hue and marker wherever it appears.";
+  return "One rule for all frames.";
+}
+
+function LevelName({ question, proposed }: { question: IntakeQuestion; proposed: Option | null }) {
+  return (
+    <div className="max-w-read px-4 py-4 sm:px-6">
+      <TextField
+        label="Name of the level of theory"
+        name="option"
+        required
+        maxLength={120}
+        autoComplete="off"
+        spellCheck={false}
+        defaultValue={proposed?.text ?? ""}
+        placeholder="for example B3LYP/6-31G(d)"
+        help={
+          proposed?.detail ??
+          (question.options.length > 0
+            ? `Also there: ${question.options.map((option) => option.text).join(", ")}.`
+            : "As the trade writes it; tables, figures and exports carry it.")
+        }
+      />
+    </div>
+  );
+}
+
+const VALUES_COLUMNS = "grid-cols-[repeat(3,5.5rem)_4.5rem]";
+
+/** Heads of the figures, where there are any: the first frames and the spread. */
+function OptionHead({ question }: { question: IntakeQuestion }) {
+  const values = Math.max(0, ...question.options.map((option) => option.values?.length ?? 0));
+  if (values === 0) return null;
+  return (
+    <div
+      aria-hidden="true"
+      className="flex justify-between gap-4 px-4 pt-2 pb-1 text-xs font-medium text-ink-3 max-sm:hidden sm:px-6"
+    >
+      <span className="pl-8">Number</span>
+      <span className={`grid gap-4 text-right ${VALUES_COLUMNS}`}>
+        {[1, 2, 3].map((frame) => (
+          <span key={frame}>{frame <= values ? `Frame ${frame}` : ""}</span>
+        ))}
+        <span>Spread</span>
+      </span>
+    </div>
+  );
+}
+
+function OptionFigures({ question, option }: { question: IntakeQuestion; option: Option }) {
+  const spread = option.spreadKcal;
+  if (option.values === undefined) {
+    return spread === undefined || spread === null ? null : (
+      <span className="text-right whitespace-nowrap">
+        {withUnit(spread > 1000 ? fixed(spread, 0) : formatEnergy(spread), "kcal/mol")}
+        <span className="sr-only"> spread</span>
+      </span>
+    );
+  }
+  const asked = question.code === "energy-from";
+  return (
+    <span
+      className={`grid gap-4 text-right max-sm:grid-cols-[repeat(2,auto)] max-sm:justify-start sm:grid-cols-[repeat(3,5.5rem)_4.5rem]`}
+    >
+      {[0, 1, 2].map((k) => (
+        <span key={k} className={`truncate ${k > 0 ? "max-sm:hidden" : ""}`}>
+          <span className="sr-only">frame {k + 1}: </span>
+          {option.values?.[k]?.replaceAll("-", "\u2212") ?? (asked ? "\u2013" : "")}
+        </span>
+      ))}
+      <span>
+        <span className="text-xs text-ink-3 sm:sr-only">spread </span>
+        {spread === undefined || spread === null
+          ? ""
+          : spread > 1000
+            ? fixed(spread, 0)
+            : formatEnergy(spread)}
+      </span>
+    </span>
+  );
+}

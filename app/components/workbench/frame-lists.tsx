@@ -1,0 +1,219 @@
+import { type ReactNode, useState } from "react";
+import { Badge } from "~/components/ui/badge";
+import { TextButton } from "~/components/ui/text-link";
+import { capital, formatCount, plural } from "~/lib/format";
+import { whyNotReleased } from "~/lib/intake/release";
+import type { IntakeMessage } from "~/lib/intake/report";
+import type { FileView, FrameView } from "~/lib/views";
+import { type FrameGroup, framesWords, groupFrames, reasonWords } from "~/lib/workbench/intake-lists";
+import { HoldFrame, ReleaseFrame } from "./decide-frame";
+import { useWorkbench } from "./workbench-context";
+
+const FIRST_GROUPS = 10;
+
+/** What is held, why, where, and what can be done about it. */
+export function HeldList({ frames }: { frames: readonly FrameView[] }) {
+  const { ensemble } = useWorkbench();
+  return (
+    <FrameList
+      title="Held"
+      badge={<Badge tone="held">{formatCount(ensemble.held)}</Badge>}
+      lead={
+        ensemble.held === 0
+          ? "No frame is held."
+          : "Kept, and left out of every computation until somebody releases them."
+      }
+      edge="border-held-edge"
+      frames={frames}
+      total={ensemble.held}
+      tool={
+        ensemble.mayCompute && ensemble.openQuestions === 0 ? (
+          <HoldFrame ensembleId={ensemble.id} frames={ensemble.frames} />
+        ) : null
+      }
+    >
+      {(group) => <HeldEntry key={group.first.number} group={group} />}
+    </FrameList>
+  );
+}
+
+/** Frames that were accepted with a remark; it travels with them. */
+export function RemarkedList({ frames }: { frames: readonly FrameView[] }) {
+  const { ensemble } = useWorkbench();
+  return (
+    <FrameList
+      title="With a remark"
+      badge={<Badge tone="remark">{formatCount(ensemble.remarked)}</Badge>}
+      lead={
+        ensemble.remarked === 0
+          ? "No frame carries a remark."
+          : "Accepted; the remark travels with the frame."
+      }
+      edge="border-remark-edge"
+      frames={frames}
+      total={ensemble.remarked}
+    >
+      {(group) => (
+        <Entry key={group.first.number} group={group}>
+          <p>{group.first.note}</p>
+          <Acts group={group} />
+        </Entry>
+      )}
+    </FrameList>
+  );
+}
+
+function FrameList({
+  title,
+  badge,
+  lead,
+  edge,
+  frames,
+  total,
+  tool,
+  children,
+}: {
+  title: string;
+  badge: ReactNode;
+  lead: string;
+  edge: string;
+  frames: readonly FrameView[];
+  total: number;
+  tool?: ReactNode;
+  children: (group: FrameGroup) => ReactNode;
+}) {
+  const [all, setAll] = useState(false);
+  const groups = groupFrames(frames);
+  const shown = all ? groups : groups.slice(0, FIRST_GROUPS);
+  return (
+    <section className="min-w-0">
+      <div className="flex flex-wrap items-center gap-3">
+        <h3 className="text-sm font-semibold">{title}</h3>
+        {badge}
+        {tool ? <span className="ml-auto">{tool}</span> : null}
+      </div>
+      <p className="mt-1 text-xs text-ink-3">{lead}</p>
+      {shown.length > 0 ? <ul className={`mt-2 border-t ${edge}`}>{shown.map(children)}</ul> : null}
+      {groups.length > FIRST_GROUPS ? (
+        <p className="mt-2 text-xs text-ink-3">
+          {shown.length} of {formatCount(groups.length)} entries ·{" "}
+          <TextButton onClick={() => setAll(!all)}>{all ? "show fewer" : "show all"}</TextButton>
+        </p>
+      ) : null}
+      {frames.length < total ? (
+        <p className="mt-2 text-xs text-ink-3">
+          The first {formatCount(frames.length)} of {formatCount(total)} frames are listed; the strip above
+          shows all.
+        </p>
+      ) : null}
+    </section>
+  );
+}
+
+function Entry({ group, children }: { group: FrameGroup; children: ReactNode }) {
+  const { selected, ensemble } = useWorkbench();
+  const { first, frames } = group;
+  const onView = selected.length > 0 && frames.some((frame) => selected[0] === frame.number);
+  const file = ensemble.files.length > 1 ? (ensemble.files[first.file]?.name ?? null) : null;
+  return (
+    <li
+      className={`relative border-b border-rule py-3 ${onView ? "before:absolute before:inset-y-0 before:-left-3 before:w-[3px] before:bg-mark max-sm:before:-left-2" : ""}`}
+    >
+      <p className="figures mb-1 flex flex-wrap items-center gap-x-3 gap-y-1">
+        <b className="font-semibold">{framesWords(frames.map((frame) => frame.number))}</b>
+        {first.state === "held" ? <Badge tone="held">{reasonWords(first.holdReason)}</Badge> : null}
+        {frames.length === 1 && first.label ? (
+          <span className="truncate text-ink-3">{first.label}</span>
+        ) : null}
+        <span className="ml-auto text-xs text-ink-3">
+          {file ? `${file}, ` : ""}
+          {frames.length === 1 ? "" : "from "}line {formatCount(first.line)}
+        </span>
+      </p>
+      {children}
+    </li>
+  );
+}
+
+function HeldEntry({ group }: { group: FrameGroup }) {
+  const { ensemble } = useWorkbench();
+  const { first, frames } = group;
+  const waits = first.holdReason === "waits-for-answer";
+  const why = whyNotReleased(first.holdReason);
+  const single = frames.length === 1;
+  return (
+    <Entry group={group}>
+      {first.note ? <p>{first.note}</p> : null}
+      {waits && ensemble.openQuestions > 0 ? (
+        <p className="text-ink-2">
+          Released by the answer to the {ensemble.openQuestions === 1 ? "question" : "questions"} above.
+        </p>
+      ) : null}
+      {why !== null ? (
+        <p className="text-xs text-ink-3">
+          {single ? "It" : "They"} cannot be released
+          {single ? `: ${why}` : `: ${plural(frames.length, "frame")}. ${capital(why)}`}
+        </p>
+      ) : null}
+      <Acts group={group}>
+        {single && first.releasable && ensemble.mayCompute && !(waits && ensemble.openQuestions > 0) ? (
+          <ReleaseFrame ensembleId={ensemble.id} frame={first.number} note={first.note} />
+        ) : null}
+      </Acts>
+    </Entry>
+  );
+}
+
+function Acts({ group, children }: { group: FrameGroup; children?: ReactNode }) {
+  const { selected, show } = useWorkbench();
+  const frame = group.frames.find((one) => one.showable);
+  const shown = frame !== undefined && selected.length === 1 && selected[0] === frame.number;
+  if (frame === undefined && !children) return null;
+  return (
+    <p className="mt-1 flex flex-wrap gap-4 [&>*]:max-sm:py-2">
+      {frame === undefined ? null : shown ? (
+        <span className="text-ink-3">Shown in the view</span>
+      ) : (
+        <TextButton onClick={() => show([frame.number])}>
+          Show<span className="sr-only"> frame {frame.number}</span>
+        </TextButton>
+      )}
+      {children}
+    </p>
+  );
+}
+
+/** What intake said of files rather than of frames. */
+export function FileMessages({
+  messages,
+  files,
+}: {
+  messages: readonly IntakeMessage[];
+  files: readonly FileView[];
+}) {
+  const of = messages.filter((message) => message.frame === undefined && message.severity !== "question");
+  if (of.length === 0) return null;
+  return (
+    <section className="mt-9">
+      <h3 className="text-sm font-semibold">Of the {files.length === 1 ? "file" : "files"}</h3>
+      <ul className="mt-2 border-t border-remark-edge">
+        {of.map((message, k) => (
+          <li key={k} className="border-b border-rule py-3">
+            <p>
+              {files.length > 1 ? `${message.file}: ` : ""}
+              {message.message}
+              {message.found ? <span className="text-ink-3"> Found: “{message.found}”.</span> : null}
+            </p>
+            {message.hint || message.line ? (
+              <p className="text-xs text-ink-3">
+                {[message.line ? `Line ${formatCount(message.line)}.` : null, message.hint]
+                  .filter(Boolean)
+                  .join(" ")}
+              </p>
+            ) : null}
+          </li>
+        ))}
+      </ul>
+    </section>
+  );
+}

@@ -1,0 +1,85 @@
+import { href } from "react-router";
+import { Finding, SectionHead } from "~/components/ui/finding";
+import { KeyFigure, KeyFigures } from "~/components/ui/key-figures";
+import { Note } from "~/components/ui/note";
+import { TextLink } from "~/components/ui/text-link";
+import { formatCount } from "~/lib/format";
+import type { IntakeView } from "~/lib/views";
+import { intakeFinding } from "~/lib/workbench/findings";
+import { AskCards } from "./ask-cards";
+import { FileMessages, HeldList, RemarkedList } from "./frame-lists";
+import { FrameStripFigure } from "./frame-strip-figure";
+import { useWorkbench } from "./workbench-context";
+
+/** What was read, and what became of every frame. */
+export function IntakeSection({ intake }: { intake: IntakeView }) {
+  const { ensemble } = useWorkbench();
+  const finding = intakeFinding(ensemble, intake.waiting);
+  const asks = ensemble.openQuestions > 0;
+  return (
+    <section aria-labelledby="section-title">
+      <SectionHead
+        id="section-title"
+        title="Intake"
+        aside={<TextLink to={href("/formats")}>What the readers accept</TextLink>}
+      />
+      <Finding more={finding.second ?? undefined}>{finding.text}</Finding>
+      <KeyFigures>
+        <KeyFigure label="Frames" value={formatCount(ensemble.frames)} />
+        {asks ? (
+          <KeyFigure label="Wait for an answer" value={formatCount(intake.waiting)} />
+        ) : (
+          <KeyFigure label="Accepted" value={formatCount(ensemble.accepted)} />
+        )}
+        <KeyFigure
+          label="Of these with a remark"
+          value={formatCount(ensemble.remarked)}
+          tone={ensemble.remarked > 0 ? "remark" : undefined}
+        />
+        <KeyFigure
+          label={asks ? "Held for other reasons" : "Held"}
+          value={formatCount(ensemble.held - (asks ? intake.waiting : 0))}
+          tone={ensemble.held - (asks ? intake.waiting : 0) > 0 ? "held" : undefined}
+        />
+      </KeyFigures>
+      <FrameStripFigure states={intake.strip} />
+      {asks ? (
+        <AskCards ensembleId={ensemble.id} questions={intake.questions} mayAnswer={ensemble.mayCompute} />
+      ) : null}
+      <div className="mt-9 grid items-start gap-x-10 gap-y-8 xl:grid-cols-2">
+        <HeldList frames={intake.held} />
+        <RemarkedList frames={intake.remarked} />
+      </div>
+      <FileMessages messages={intake.messages} files={ensemble.files} />
+      <Answered intake={intake} />
+      {ensemble.chiralityNote ? (
+        <Note className="mt-9">
+          The molecule counts as{" "}
+          {ensemble.chirality === "unsure" ? "chiral, though that is unsure" : ensemble.chirality}:{" "}
+          {ensemble.chiralityNote}
+        </Note>
+      ) : null}
+    </section>
+  );
+}
+
+/** The answers that were given, still shown: what was confirmed can be read again. */
+function Answered({ intake }: { intake: IntakeView }) {
+  const answered = intake.questions.filter((question) => question.answered !== undefined);
+  if (answered.length === 0) return null;
+  return (
+    <section className="mt-9">
+      <h3 className="text-sm font-semibold">Answered</h3>
+      <dl className="mt-2 border-t border-rule">
+        {answered.map((question) => (
+          <div key={question.id} className="flex flex-wrap justify-between gap-x-6 border-b border-rule py-2">
+            <dt className="text-ink-2">{question.text}</dt>
+            <dd className="font-medium">
+              {question.options.find((option) => option.id === question.answered)?.text ?? question.answered}
+            </dd>
+          </div>
+        ))}
+      </dl>
+    </section>
+  );
+}
