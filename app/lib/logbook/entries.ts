@@ -80,6 +80,7 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
     data: z.object({ before: z.string(), after: z.string() }),
   }),
   z.object({ type: z.literal("deleted"), data: z.object({ name: z.string() }) }),
+  z.object({ type: z.literal("restored"), data: z.object({ name: z.string() }) }),
 ]);
 
 export type LogbookEntry = z.infer<typeof logbookEntrySchema>;
@@ -169,6 +170,8 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: `Moved to the series ${entry.data.after}`, detail: `before: ${entry.data.before}` };
     case "deleted":
       return { text: `Deleted ${entry.data.name}`, detail: null };
+    case "restored":
+      return { text: `Brought ${entry.data.name} back`, detail: null };
   }
 }
 

@@ -23,6 +23,7 @@ import {
   moveEnsemble,
   renameEnsemble,
 } from "~/services/ensembles/rename-ensemble.server";
+import { restoreEnsemble } from "~/services/ensembles/restore-ensemble.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import { loadTeam } from "~/services/teams/load-team.server";
 import type { Route } from "./+types/series";
@@ -108,6 +109,9 @@ async function act(actor: Actor, teamId: string, form: FormData) {
       return done;
     case "delete":
       await deleteEnsemble({ actor, ensembleId });
+      return done;
+    case "restore":
+      await restoreEnsemble({ actor, ensembleId });
       return done;
     default:
       return refused("This page has no such act. Load it again.");
