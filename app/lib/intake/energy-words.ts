@@ -24,7 +24,7 @@ const MEASURES = set(
 );
 /** Words before a number that counts or names (row E04). */
 const COUNTERS = set(
-  "conf confs conformer conformers conformation frame frames model structure struct mol molecule id index idx no nr num " +
+  "conf confs conformer conformers conformation frame frames model structure struct id index idx no nr num " +
     "number rank cluster atom atoms run job snapshot image",
 );
 /** Units behind numbers that are no energies. */

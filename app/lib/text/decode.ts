@@ -1,5 +1,20 @@
 const utf8 = new TextDecoder("utf-8", { fatal: true, ignoreBOM: true });
-const legacy = new TextDecoder("windows-1252");
+
+/**
+ * Windows-1252 from 0x80 to 0x9f by the WHATWG encoding standard; the rest is Latin-1. Our own table, as the engine's
+ * decoder of that name is Latin-1 throughout in some versions of Node.js.
+ */
+const UPPER_CONTROLS =
+  "\u20ac\u0081\u201a\u0192\u201e\u2026\u2020\u2021\u02c6\u2030\u0160\u2039\u0152\u008d\u017d\u008f" +
+  "\u0090\u2018\u2019\u201c\u201d\u2022\u2013\u2014\u02dc\u2122\u0161\u203a\u0153\u009d\u017e\u0178";
+
+function decodeWindows1252(bytes: Uint8Array): string {
+  let text = "";
+  for (const byte of bytes) {
+    text += byte >= 0x80 && byte <= 0x9f ? UPPER_CONTROLS[byte - 0x80] : String.fromCharCode(byte);
+  }
+  return text;
+}
 
 /** A line's text; `legacy` is true where its bytes are not UTF-8 and were read as Windows-1252 (row G03). */
 export interface DecodedText {
@@ -13,7 +28,7 @@ export function decodeText(bytes: Uint8Array, start: number, end: number): Decod
   try {
     return { text: utf8.decode(piece), legacy: false };
   } catch {
-    return { text: legacy.decode(piece), legacy: true };
+    return { text: decodeWindows1252(piece), legacy: true };
   }
 }
 

@@ -265,9 +265,11 @@ function numberFault(fault: NumberFault, field: Field, axis: number): AtomFault 
   }
 }
 
-function makeAtom(parsed: ParsedElement, token: string, label: string | null) {
-  const none = { isotope: 0, label, byNumber: false };
-  if (parsed.kind === "dummy") return { ...none, z: 0, dummy: true, label: label ?? token };
+function makeAtom(parsed: ParsedElement, token: string, written: string | null) {
+  // A column of labels that repeats the symbol says no more than the element.
+  const label = written === token ? null : written;
+  if (parsed.kind === "dummy")
+    return { z: 0, isotope: 0, label: label ?? token, dummy: true, byNumber: false };
   if (parsed.kind !== "element") throw new TypeError(`No atom can be made of “${token}”.`);
   const { z, isotope, form } = parsed;
   const own = form === "label" ? token : null;

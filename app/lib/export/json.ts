@@ -1,0 +1,70 @@
+import { CONSTANTS_YEAR } from "../units.ts";
+import { type ExportSet, sourceOf } from "./export-set.ts";
+
+export const EXPORT_SCHEMA_VERSION = 1;
+
+/** Goes with every list of populations. */
+export const CAUTION =
+  "The populations are those of the listed conformers at the named level and temperature: they carry the error of " +
+  "that level, and conformers that the search did not find are missing from them.";
+
+/**
+ * The distinct set as JSON, in pieces: recipe, units, checksums of the sources and constants first, then one
+ * conformer a line. Lengths Å, energies kcal/mol but for `energy`, which is in the unit of the level.
+ *
+ * @example JSON.parse([...writeJson(set)].join("")).conformers.length
+ */
+export function* writeJson(set: ExportSet): Generator<string> {
+  const head = {
+    schema: "lowlying-distinct-set",
+    schemaVersion: EXPORT_SCHEMA_VERSION,
+    caution: CAUTION,
+    constants: CONSTANTS_YEAR,
+    units: {
+      energy: set.level?.unit ?? null,
+      relativeEnergy: "kcal/mol",
+      mirrorRmsd: "Å",
+      population: "fraction",
+      temperature: "K",
+    },
+    ensemble: set.ensemble,
+    elements: Array.from(set.elements),
+    isotopes: set.isotopes && Array.from(set.isotopes),
+    sources: set.sources,
+    level: set.level,
+    recipe: set.recipe,
+    temperature: set.temperature,
+    weights: set.weights,
+  };
+  yield `${JSON.stringify(head, null, 2).slice(0, -2)},\n  "conformers": [`;
+  for (const [k, conformer] of set.conformers.entries()) {
+    const {
+      frame,
+      label,
+      energy,
+      relativeEnergy,
+      population,
+      degeneracy,
+      symmetryNumber,
+      copies,
+      mirrorRmsd,
+      found,
+    } = conformer;
+    const source = sourceOf(set.sources, frame)?.sha256 ?? null;
+    const bound = conformer.upperBound === undefined ? {} : { upperBound: conformer.upperBound };
+    const line = {
+      frame,
+      label,
+      energy,
+      relativeEnergy,
+      population,
+      degeneracy,
+      symmetryNumber,
+      copies,
+      mirrorRmsd,
+      found,
+    };
+    yield `${k === 0 ? "" : ","}\n    ${JSON.stringify({ ...line, ...bound, source })}`;
+  }
+  yield "\n  ]\n}\n";
+}
