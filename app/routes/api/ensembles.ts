@@ -1,3 +1,34 @@
-export function loader() {
-  return new Response(null, { status: 404 });
+import { ensembleListQuerySchema } from "~/lib/api/schemas";
+import type { Actor } from "~/services/auth/access.server";
+import { accessTeam } from "~/services/auth/access.server";
+import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
+import { listForApi } from "~/services/ensembles/list-for-api.server";
+import { openForm } from "~/services/ensembles/read-multipart.server";
+import { takeIn } from "~/services/ensembles/take-in.server";
+import { notFound } from "~/services/http.server";
+import { answerCall, json, readQuery } from "./answer-call.server";
+
+/** A token acts in its one team. */
+function teamOf(actor: Actor): string {
+  if (actor.kind !== "token") throw notFound();
+  return actor.teamId;
 }
+
+const answer = answerCall({
+  async GET({ actor, url }) {
+    const { teamId } = await accessTeam(actor, "read", teamOf(actor));
+    return json(await listForApi({ actor, teamId, ...readQuery(url, ensembleListQuerySchema) }));
+  },
+  async POST({ actor, request }) {
+    const { teamId } = await accessTeam(actor, "take-in", teamOf(actor));
+    const form = openForm({ body: request.body, contentType: request.headers.get("content-type") });
+    const { ensembleId, created } = await takeIn({ actor, teamId, form, interactive: false });
+    return json(await describeEnsemble(teamId, ensembleId), {
+      status: created ? 201 : 200,
+      location: `/api/v1/ensembles/${ensembleId}`,
+    });
+  },
+});
+
+export const loader = answer;
+export const action = answer;

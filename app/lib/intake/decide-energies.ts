@@ -1,0 +1,193 @@
+import { DomainError, type Fault } from "../errors.ts";
+import { ENERGY_UNITS, type EnergyUnit } from "../units.ts";
+import type { EnergyKind } from "../views.ts";
+import type { EnergyCandidate, EnergyFindings } from "./energies.ts";
+import { energyFromQuestion, energyUnitQuestion } from "./energy-questions.ts";
+import { findUnit } from "./energy-unit-finding.ts";
+import type { IntakeMessage, IntakeQuestion, QuestionOption } from "./report.ts";
+
+/** What has been said about the energies of an upload; null where nobody did. */
+export interface EnergyAnswers {
+  energyUnit: string | null;
+  /** `key:NAME`, `number:N`, or "none": the comments hold no energy. */
+  energyFrom: string | null;
+  level: string | null;
+  energyKind: EnergyKind;
+  energyTemperature: number | null;
+}
+
+/** Answer to the question for the number, and to that for the unit, where it is no energy at all. */
+export const NO_ENERGY = "none";
+
+export interface DecisionMode {
+  /** A program cannot be asked for unit and level: leaving them open is refused. */
+  refuseOpen: boolean;
+  /** A person confirms the unit even where the file names one. */
+  confirmUnit: boolean;
+  /** Levels in use nearby, likeliest first. */
+  knownLevels: readonly string[];
+  /** Comment line of the first frame, which may name the level. */
+  comment: string;
+}
+
+export type EnergyDecision =
+  | { kind: "none"; messages: IntakeMessage[] }
+  | { kind: "ask"; questions: IntakeQuestion[] }
+  | {
+      kind: "column";
+      candidate: EnergyCandidate;
+      unit: EnergyUnit;
+      level: string;
+      messages: IntakeMessage[];
+    };
+
+/**
+ * What to do with the energies of an upload: take a column, take none, or ask.
+ *
+ * @param findings of a scan that was given `answers.energyFrom` where that is set
+ * @param elements atomic numbers of the molecule
+ * @throws DomainError invalid where `mode.refuseOpen` and unit or level are open
+ * @example decideEnergies(findings, elements, answers, mode).kind // "column"
+ */
+export function decideEnergies(
+  findings: EnergyFindings,
+  elements: ArrayLike<number>,
+  answers: EnergyAnswers,
+  mode: DecisionMode,
+): EnergyDecision {
+  if (answers.energyFrom === NO_ENERGY) return { kind: "none", messages: [] };
+  if (findings.verdict === "none") return { kind: "none", messages: unusedAnswers(findings, answers) };
+  const { chosen } = findings;
+  if (chosen === null) return { kind: "ask", questions: askNumber(findings, elements, answers, mode) };
+  const finding = findUnit(chosen, elements);
+  const stated = asUnit(answers.energyUnit);
+  const unit = stated ?? (mode.confirmUnit ? null : finding.unit);
+  if (mode.refuseOpen) refuseOpen(chosen, unit, answers.level);
+  const questions: IntakeQuestion[] = [];
+  if (unit === null) questions.push(askUnit(chosen, finding));
+  if (answers.level === null) questions.push(askLevel(chosen, mode));
+  if (unit === null || answers.level === null) return { kind: "ask", questions };
+  return {
+    kind: "column",
+    candidate: chosen,
+    unit,
+    level: answers.level,
+    messages: contradiction(chosen, finding.unit, stated),
+  };
+}
+
+function asUnit(text: string | null): EnergyUnit | null {
+  return ENERGY_UNITS.find((unit) => unit === text) ?? null;
+}
+
+function nameOf(candidate: EnergyCandidate): string {
+  return candidate.key === null ? `number ${candidate.position} of the comment line` : `“${candidate.key}”`;
+}
+
+function refuseOpen(candidate: EnergyCandidate, unit: EnergyUnit | null, level: string | null): void {
+  const shown = candidate.first.find((text) => text !== null) ?? "";
+  const what = `The comment lines hold an energy, ${nameOf(candidate)} (${shown} in the first frames)`;
+  const faults: Fault[] = [];
+  if (unit === null) {
+    faults.push({
+      field: "energyUnit",
+      message: `${what}, and no unit stands beside it. State energyUnit: hartree, kcal/mol, kJ/mol or eV.`,
+    });
+  }
+  if (level === null) {
+    faults.push({
+      field: "level",
+      message: `${what}: name the level of theory in "level". If it is no energy, send energyFrom=none.`,
+    });
+  }
+  if (faults.length === 0) return;
+  const detail = faults.map((fault) => fault.message).join(" ");
+  throw new DomainError("invalid", "The energies are not clear", detail, { faults });
+}
+
+/** The caller spoke of energies, and there are none. */
+function unusedAnswers(findings: EnergyFindings, answers: EnergyAnswers): IntakeMessage[] {
+  const row = findings.candidates[0]?.column.rows[0];
+  if (answers.level === null && answers.energyUnit === null) return [];
+  const level = answers.level === null ? "no level was made" : `the level “${answers.level}” was not made`;
+  return [
+    {
+      code: "E10",
+      severity: "remark",
+      file: row?.file ?? "",
+      message: `The comment lines hold no energy, so ${level}.`,
+      hint: "If one of their numbers is the energy, name it with energyFrom and read the files again.",
+    },
+  ];
+}
+
+function contradiction(
+  candidate: EnergyCandidate,
+  found: EnergyUnit | null,
+  stated: EnergyUnit | null,
+): IntakeMessage[] {
+  if (found === null || stated === null || found === stated) return [];
+  return [
+    {
+      code: "E06",
+      severity: "remark",
+      file: candidate.column.rows[0]?.file ?? "",
+      message: `The files write ${found} beside ${nameOf(candidate)}, and ${stated} was stated: ${stated} was taken.`,
+      hint: "If the files are right, read them again with their unit.",
+    },
+  ];
+}
+
+// --- questions ----------------------------------------------------------------------------------
+
+function withNone(question: IntakeQuestion, text: string): IntakeQuestion {
+  const none: QuestionOption = { id: NO_ENERGY, text, detail: "Takes the structures without energies." };
+  return { ...question, options: [...question.options, none] };
+}
+
+function askNumber(
+  findings: EnergyFindings,
+  elements: ArrayLike<number>,
+  answers: EnergyAnswers,
+  mode: DecisionMode,
+): IntakeQuestion[] {
+  const number = energyFromQuestion(findings, elements);
+  const likely = findings.proposed ?? findings.candidates[0];
+  const questions = number === null ? [] : [withNone(number, "None of these is an energy")];
+  if (answers.level === null && likely !== undefined) questions.push(askLevel(likely, mode));
+  return questions;
+}
+
+function askUnit(candidate: EnergyCandidate, finding: ReturnType<typeof findUnit>): IntakeQuestion {
+  return withNone(energyUnitQuestion(candidate, finding), "It is no energy");
+}
+
+const MAX_LEVELS = 8;
+
+function askLevel(candidate: EnergyCandidate, mode: DecisionMode): IntakeQuestion {
+  const inFile = levelWords(mode.comment, candidate.key);
+  const names = [...new Set([...inFile, ...mode.knownLevels])].slice(0, MAX_LEVELS);
+  return {
+    id: "level",
+    code: "level",
+    text: "At which level of theory?",
+    reason:
+      "The energies get the name of their level, so that a second one can stand beside it. Any name will do.",
+    options: names.map((name, at) => ({
+      id: `name:${name}`,
+      text: name,
+      detail: inFile.includes(name) ? "Stands in the comment line" : "In use in this team",
+      proposed: at === 0 && inFile.length > 0,
+    })),
+  };
+}
+
+/** Words of a comment line that look like the name of a method: `MMFF94`, `B3LYP/6-31G(d)`, `HF/def2-SVP`. */
+function levelWords(comment: string, key: string | null): string[] {
+  const words = comment.slice(0, 1000).split(/[\s,;=:"]+/);
+  return words.filter((word) => {
+    if (word === key || word.length < 2 || word.length > 40) return false;
+    if (!/^[A-Z][A-Za-z0-9()*+,/ω-]*$/.test(word) || !/[A-Z]{2}/.test(word)) return false;
+    return /\d|\//.test(word) && !/^[A-Z]\d+$/.test(word);
+  });
+}

@@ -1,0 +1,152 @@
+import { eq } from "drizzle-orm";
+import type { z } from "zod";
+import { db } from "../../db/client.server.ts";
+import { type answersSchema, ensembleFiles, ensembles } from "../../db/schema.server.ts";
+import { type DecisionMode, decideEnergies, type EnergyAnswers } from "../../lib/intake/decide-energies.ts";
+import type { IntakeMessage } from "../../lib/intake/report.ts";
+import { type NewColumn, settleEnergies } from "../../lib/intake/settle-energies.ts";
+import { acceptedSha } from "./accepted-frames.server.ts";
+import {
+  type Counts,
+  chiralityOf,
+  countFrames,
+  holdForAnswers,
+  insertColumns,
+  insertMessages,
+  insertQuestions,
+  remarkFrames,
+} from "./intake-rows.server.ts";
+import { packBonds, packElements } from "./molecule.server.ts";
+import type { Reading, ReadResult } from "./reading.server.ts";
+import { scanComments } from "./scan-comments.server.ts";
+
+export type WrittenAnswers = z.infer<typeof answersSchema>;
+
+/** What is kept of the group for a further batch; a person's page shows only the words on it. */
+function identityOf({ group }: ReadResult) {
+  const { charge, multiplicity, configuration } = group;
+  return { charge, multiplicity, configuration };
+}
+
+/** The scan of the comments, made anew where the number was named after the files. */
+async function scanWith(reading: Reading, result: ReadResult, energyFrom: string | null) {
+  const named = energyFrom === "none" ? null : energyFrom;
+  if (reading.energyFrom === named) return result;
+  const names = result.files.map((file) => file.name);
+  return scanComments(reading.ensembleId, names, named);
+}
+
+export interface CompletedReading {
+  counts: Counts;
+  questions: number;
+}
+
+/**
+ * Decides on energies and writes everything of an ensemble but what makes it visible. All of it hangs on the row in
+ * flight and goes with it.
+ *
+ * @param options.sources ids of the kept files by position
+ * @param options.keep columns of an earlier reading that keep id and place by their name
+ * @throws DomainError invalid where a program left unit or level open, or named a number that no frame has
+ */
+export async function completeReading(
+  reading: Reading,
+  result: ReadResult,
+  options: {
+    answers: EnergyAnswers;
+    kindStated: boolean;
+    written: WrittenAnswers;
+    mode: Omit<DecisionMode, "comment">;
+    sources: readonly string[];
+    keep?: ReadonlyMap<string, { id: string; ordinal: number }>;
+  },
+): Promise<CompletedReading> {
+  const { ensembleId } = reading;
+  const { answers, mode } = options;
+  const held = new Set([...result.decisions.values()].filter((d) => d.state === "held").map((d) => d.number));
+  const accepted = (frame: number) => !held.has(frame);
+  const scanned = await scanWith(reading, result, answers.energyFrom);
+  const findings = scanned.scan.finish(accepted);
+  const decision = decideEnergies(findings, result.group.elements, answers, {
+    ...mode,
+    comment: result.firstComment,
+  });
+  const settled =
+    decision.kind === "ask"
+      ? null
+      : settleEnergies(decision, {
+          candidates: findings.candidates,
+          answers,
+          kindStated: options.kindStated,
+          extended: result.extended,
+          frames: result.frames,
+          accepted,
+        });
+  const questions = decision.kind === "ask" ? decision.questions : [];
+  if (settled) await remarkFrames(db, ensembleId, settled.messages);
+  if (questions.length > 0) await holdForAnswers(db, ensembleId);
+  result.messages.addAll(settled?.messages ?? []);
+  await insertColumns(db, ensembleId, settled?.columns ?? [], options.keep);
+  await insertQuestions(db, ensembleId, questions);
+  await insertMessages(db, ensembleId, listed(result, accepted));
+  await insertFiles(reading, options.sources);
+  const energies = settled?.columns.find((column) => column.kind === "energy") ?? null;
+  const counts = await writeMolecule(reading, result, options.written, questions.length, energies);
+  return { counts, questions: questions.length };
+}
+
+/** One message a frame that is held: why; its remarks would only hide that. */
+function listed(result: ReadResult, accepted: (frame: number) => boolean): IntakeMessage[] {
+  return result.messages
+    .messages()
+    .filter(({ severity, frame }) => severity !== "remark" || frame === undefined || accepted(frame));
+}
+
+async function insertFiles(reading: Reading, sources: readonly string[]): Promise<void> {
+  await db.insert(ensembleFiles).values(
+    reading.files.map((file) => ({
+      ...file,
+      name: [...file.name].slice(0, 255).join(""),
+      ensembleId: reading.ensembleId,
+      batch: 0,
+      sourceId: sources[file.position] ?? "",
+    })),
+  );
+}
+
+async function writeMolecule(
+  reading: Reading,
+  result: ReadResult,
+  written: WrittenAnswers,
+  openQuestions: number,
+  energies: NewColumn | null,
+): Promise<Counts> {
+  const { ensembleId } = reading;
+  const { group, graph, classification } = result;
+  const here = eq(ensembles.id, ensembleId);
+  const chirality =
+    openQuestions > 0
+      ? { chirality: classification.chirality, chiralityNote: classification.chiralityNote.slice(0, 500) }
+      : await chiralityOf(db, ensembleId, graph, group.configuration, energies);
+  const counts = await countFrames(db, ensembleId);
+  await db
+    .update(ensembles)
+    .set({
+      answers: written,
+      formula: classification.formula.slice(0, 120),
+      atoms: graph.elements.length,
+      elements: packElements(graph.elements, graph.isotopes),
+      bonds: packBonds(graph.bonds),
+      atomLabels: result.atomLabels,
+      identity: identityOf(result),
+      ...chirality,
+      ...counts,
+      openQuestions,
+    })
+    .where(here);
+  await db
+    .update(ensembles)
+    .set({ acceptedSha: await acceptedSha(db, ensembleId) })
+    .where(here);
+  return counts;
+}

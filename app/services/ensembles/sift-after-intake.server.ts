@@ -1,0 +1,30 @@
+import { and, asc, eq, isNull } from "drizzle-orm";
+import { db } from "../../db/client.server.ts";
+import { columns, ensembles } from "../../db/schema.server.ts";
+import type { Grant } from "../auth/access.server.ts";
+import { log } from "../log.server.ts";
+import { askForSift } from "../sifts/create-sift.server.ts";
+
+/**
+ * Asks for the first sift once nothing is open: the defaults at the first level, or file order without energies. A
+ * failure here never fails the intake.
+ */
+export async function siftAfterIntake(at: Grant & { ensembleId: string }): Promise<void> {
+  try {
+    const rows = await db
+      .select({ accepted: ensembles.accepted, openQuestions: ensembles.openQuestions })
+      .from(ensembles)
+      .where(and(eq(ensembles.id, at.ensembleId), isNull(ensembles.deletedAt)));
+    const ensemble = rows[0];
+    if (ensemble === undefined || ensemble.openQuestions > 0 || ensemble.accepted === 0) return;
+    const levels = await db
+      .select({ id: columns.id })
+      .from(columns)
+      .where(and(eq(columns.ensembleId, at.ensembleId), eq(columns.kind, "energy")))
+      .orderBy(asc(columns.ordinal))
+      .limit(1);
+    await askForSift(at, { level: levels[0]?.id ?? null }, { automatic: true });
+  } catch (error) {
+    log.warn({ err: error, ensembleId: at.ensembleId }, "no sift after intake");
+  }
+}
