@@ -351,9 +351,26 @@ export function runningUrl(folder = path.join(ROOT, ".data")) {
   return state ? urlOf(state) : null;
 }
 
+/** Ends servers whose run was killed before it could: they would stay in memory for good. */
+async function sweepThrowaways(memory) {
+  for (const name of readdirSync(memory).filter((one) => /^lowlying-[A-Za-z0-9]{6}$/.test(one))) {
+    const places = placesIn(path.join(memory, name));
+    try {
+      // A young one may be about to note its use.
+      const young = Date.now() - statSync(places.state).mtimeMs < 60_000;
+      if (young || livingUses(places).length > 0) continue;
+      await endServer(places);
+      rmSync(places.folder, { recursive: true, force: true });
+    } catch {
+      // Somebody else's, or just being made.
+    }
+  }
+}
+
 /** A server for tests, in memory where the machine has room there; gone with its data at the end. */
 export async function openThrowaway(say) {
   const memory = existsSync("/dev/shm") ? "/dev/shm" : os.tmpdir();
+  await sweepThrowaways(memory);
   const folder = mkdtempSync(path.join(memory, "lowlying-"));
   chmodSync(folder, 0o755);
   const database = await openDatabase({ folder, durable: false, broad: true, say });

@@ -30,6 +30,9 @@ function sourceHash() {
   return hash.digest("hex");
 }
 
+/** Where the tests keep theirs. */
+export const TEST_FOLDER = ".test";
+
 /** Folders of a build; the tests have theirs, so that they never pull a running server's files from under it. */
 export function buildPlaces(folder = "") {
   return {

@@ -1,0 +1,52 @@
+import { defineConfig, devices } from "@playwright/test";
+
+// The server of a run gets its port once; worker processes read the configuration again and must find the same.
+process.env.E2E_PORT ||= String(20_000 + Math.floor(Math.random() * 20_000));
+const baseURL = `http://127.0.0.1:${process.env.E2E_PORT}`;
+
+export default defineConfig({
+  testDir: "tests/e2e",
+  outputDir: "test-results",
+  fullyParallel: true,
+  forbidOnly: true,
+  retries: 0,
+  workers: process.env.E2E_WORKERS ? Number(process.env.E2E_WORKERS) : 2,
+  timeout: 60_000,
+  expect: { timeout: 10_000 },
+  reporter: process.env.E2E_REPORT ? [["list"], ["json", { outputFile: process.env.E2E_REPORT }]] : "list",
+  use: {
+    baseURL,
+    ...devices["Desktop Chrome"],
+    viewport: { width: 1440, height: 900 },
+    browserName: "chromium",
+    screenshot: "only-on-failure",
+    trace: "retain-on-failure",
+    launchOptions: {
+      executablePath: process.env.CHROMIUM || "/usr/bin/chromium",
+      args: [
+        "--no-sandbox",
+        "--disable-background-networking",
+        "--disable-component-update",
+        "--disable-sync",
+        "--disable-quic",
+        "--no-first-run",
+      ],
+    },
+  },
+  webServer: {
+    // The same start as a person's, on a throw-away database.
+    command: "exec node scripts/e2e-server.mjs",
+    url: `${baseURL}/readyz`,
+    timeout: 180_000,
+    gracefulShutdown: { signal: "SIGTERM", timeout: 30_000 },
+    stdout: process.env.E2E_SERVER_LOG ? "pipe" : "ignore",
+    stderr: "pipe",
+    env: { ...stringsOf(process.env), PORT: process.env.E2E_PORT },
+  },
+});
+
+function stringsOf(env: NodeJS.ProcessEnv): Record<string, string> {
+  return Object.fromEntries(
+    Object.entries(env).flatMap(([key, value]) => (value === undefined ? [] : [[key, value]])),
+  );
+}
