@@ -1,6 +1,7 @@
 /** What an act of the workbench answers to its form. */
 export interface ActAnswer {
-  ok: boolean;
+  /** Absent where the server refused: then `message` says why. */
+  ok?: boolean;
   /** What to do differently, where it was refused. */
   message?: string;
   /** Done: what, for the toast. */

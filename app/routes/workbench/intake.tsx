@@ -1,3 +1,67 @@
-export default function Page() {
-  return null;
+import { data, useOutletContext } from "react-router";
+import type { ActAnswer } from "~/components/workbench/act-answer";
+import { IntakeSection } from "~/components/workbench/intake-section";
+import { sectionMeta } from "~/components/workbench/section-meta";
+import { actorContext, requestIdContext } from "~/context";
+import type { IntakeView } from "~/lib/views";
+import type { Actor } from "~/services/auth/access.server";
+import { answerQuestions } from "~/services/ensembles/answer-questions.server";
+import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
+import { ensembleNameSchema, renameEnsemble } from "~/services/ensembles/rename-ensemble.server";
+import { forPage, notFound, refuseForm } from "~/services/http.server";
+import type { Route } from "./+types/intake";
+
+export function meta({ matches }: Route.MetaArgs) {
+  return sectionMeta("Intake", matches);
+}
+
+/** One act a form: `intent` says which. */
+export async function action({ request, params, context }: Route.ActionArgs) {
+  const actor = context.get(actorContext);
+  return forPage(context.get(requestIdContext), async () => {
+    const form = await request.formData();
+    try {
+      return await act(actor, params.id, form);
+    } catch (error) {
+      return refuseForm(error, {});
+    }
+  });
+}
+
+const refused = (message: string) => data({ ok: false, message } satisfies ActAnswer, { status: 400 });
+
+async function act(actor: Actor, ensembleId: string, form: FormData) {
+  const text = (name: string) => String(form.get(name) ?? "").trim();
+  const intent = text("intent");
+  switch (intent) {
+    case "answer": {
+      const option = text("option");
+      if (option === "" || option.length > 200)
+        return refused("Choose one, or give a name of 1 to 120 characters.");
+      await answerQuestions({ actor, ensembleId, answers: [{ id: text("question"), option }] });
+      return { ok: true, done: { intent } } satisfies ActAnswer;
+    }
+    case "hold":
+    case "release": {
+      const reason = text("reason");
+      if (!/^[1-9]\d{0,7}$/.test(text("frame")))
+        return refused("Give the number of a frame, counted from 1.");
+      if (reason === "" || reason.length > 500) return refused("Give the reason, in up to 500 characters.");
+      const frame = Number(text("frame"));
+      await (intent === "hold" ? holdFrame : releaseFrame)({ actor, ensembleId, frame, reason });
+      return { ok: true, done: { intent, frame, reason } } satisfies ActAnswer;
+    }
+    case "rename": {
+      const name = ensembleNameSchema.safeParse(text("name"));
+      if (!name.success) return refused("An ensemble has a name of 1 to 200 characters.");
+      await renameEnsemble({ actor, ensembleId, name: name.data });
+      return { ok: true, done: { intent } } satisfies ActAnswer;
+    }
+    default:
+      throw notFound();
+  }
+}
+
+export default function Intake() {
+  return <IntakeSection intake={useOutletContext<IntakeView>()} />;
 }
