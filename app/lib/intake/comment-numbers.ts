@@ -146,7 +146,7 @@ function wordsBehind(tokens: readonly Token[], at: number): readonly string[] {
   for (let k = at + 1; k <= at + 2; k++) {
     const token = tokens[k];
     if (token?.kind !== "word" || tokens[k + 1]?.kind === "sign") break;
-    behind.push(token.text);
+    behind.push(token.text.replace(/[)\]},;]+$/, ""));
   }
   return behind;
 }

@@ -1,3 +1,4 @@
+import { quoteFound } from "../text/escape.ts";
 import type { EnergyUnit } from "../units.ts";
 import { type CommentNumber, type ScannedComment, scanComment } from "./comment-numbers.ts";
 import {
@@ -9,7 +10,7 @@ import {
   extractEnergy,
   parseFrom,
 } from "./energy-column.ts";
-import { boundUnit, classify, type NumberClass, saysRelative } from "./energy-words.ts";
+import { boundUnit, classify, type NumberClass, namesEnergy, saysRelative } from "./energy-words.ts";
 import { hasProperties } from "./extended-comment.ts";
 
 /** Keys, and positions, beyond these are not followed: no comment line holds so many energies. */
@@ -61,6 +62,8 @@ export interface EnergyFindings {
   readonly chosen: EnergyCandidate | null;
   /** What to propose where several could be; the chosen one otherwise. */
   readonly proposed: EnergyCandidate | null;
+  /** A key that names an energy but holds no number in any frame, such as `E = -76,02`; null where there is none. */
+  readonly unreadable: { readonly key: string; readonly found: string } | null;
 }
 
 /**
@@ -82,6 +85,7 @@ export class EnergyScan {
   readonly #keys = new Map<string, Track>();
   readonly #positions = new Map<number, Track>();
   readonly #rows: EnergyRow[] = [];
+  #unreadable: { key: string; found: string } | null = null;
 
   /**
    * @param options.from the caller's answer: only this number is taken, and it must be found
@@ -102,7 +106,10 @@ export class EnergyScan {
     for (const [key, entry] of scanned.keyed) {
       const track = trackOf(this.#keys, key, entry.number !== null);
       if (entry.number) track?.put(row, entry.number, scanned, extended);
-      else track?.values.set(row, { problem: entry.text.slice(0, 200) });
+      else if (track) track.values.set(row, { problem: entry.text.slice(0, 200) });
+      else if (this.#unreadable === null && namesEnergy(key)) {
+        this.#unreadable = { key, found: quoteFound(entry.text) };
+      }
     }
     for (const number of scanned.numbers) {
       trackOf(this.#positions, number.position, true)?.put(row, number, scanned, extended);
@@ -127,7 +134,11 @@ export class EnergyScan {
     }
     const candidates = found.filter((candidate) => candidate.count > 0).sort(byLikelihood);
     if (this.#from !== null) return this.#finishGiven(candidates, include);
-    return decide(candidates);
+    return { ...decide(candidates), unreadable: this.#withoutNumber() };
+  }
+
+  #withoutNumber(): EnergyFindings["unreadable"] {
+    return this.#unreadable && !this.#keys.has(this.#unreadable.key) ? this.#unreadable : null;
   }
 
   /** A name that changes from frame to frame, such as the label in `conf_0007: -12.3`. */
@@ -148,7 +159,7 @@ export class EnergyScan {
     const key = from.startsWith("key:") ? from.slice(4) : null;
     const chosen = makeCandidate(from, key, known ?? new Track(0), column, include);
     const others = candidates.filter((candidate) => candidate.from !== from);
-    return { candidates: [chosen, ...others], verdict: "given", chosen, proposed: chosen };
+    return { candidates: [chosen, ...others], verdict: "given", chosen, proposed: chosen, unreadable: null };
   }
 
   #trackOfGiven(from: EnergyFrom): Track | undefined {
@@ -251,7 +262,7 @@ function byLikelihood(a: EnergyCandidate, b: EnergyCandidate): number {
   );
 }
 
-function decide(candidates: readonly EnergyCandidate[]): EnergyFindings {
+function decide(candidates: readonly EnergyCandidate[]): Omit<EnergyFindings, "unreadable"> {
   const viable = candidates.filter((candidate) => RANK.indexOf(candidate.class) <= RANK.indexOf("loose"));
   const best = viable[0];
   if (!best) return { candidates, verdict: "none", chosen: null, proposed: null };

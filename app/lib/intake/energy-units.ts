@@ -43,7 +43,7 @@ export function parseEnergyUnit(word: string): EnergyUnit | null {
     .replaceAll("¹", "1")
     .replace(/mole$/i, "mol")
     .replace(/per/i, "/");
-  if (plain === "k" || /^ME/.test(plain)) return null;
+  if (plain === "k" || /^M[eE]/.test(plain)) return null;
   const spelling = plain.toLowerCase();
   return Object.hasOwn(SPELLINGS, spelling) ? (SPELLINGS[spelling] ?? null) : null;
 }

@@ -25,7 +25,7 @@ const MEASURES = set(
 /** Words before a number that counts or names (row E04). */
 const COUNTERS = set(
   "conf confs conformer conformers conformation frame frames model structure struct id index idx no nr num " +
-    "number rank cluster atom atoms run job snapshot image",
+    "number rank cluster atom atoms run job snapshot image name label title comment source file",
 );
 /** Units behind numbers that are no energies. */
 const OTHER_UNITS = set(
@@ -36,6 +36,7 @@ const OTHER_UNITS = set(
 function nameWords(name: string): string[] {
   return name
     .slice(0, 200)
+    .replace(/[Δδ∆]/g, "delta ")
     .replace(/([a-z])([A-Z])/g, "$1 $2")
     .toLowerCase()
     .split(/[^\p{L}°%]+/u)
@@ -46,7 +47,13 @@ function classOfName(name: string): NumberClass | null {
   const words = nameWords(name);
   if (words.some((word) => MEASURES.has(word))) return "other";
   if (words.some((word) => ENERGY_WORDS.has(word))) return "energy";
-  return words.some((word) => COUNTERS.has(word)) ? "other" : null;
+  // "conf 7" leaves its number to count; "conf_0007" has it in itself.
+  return !/\d/.test(name) && words.some((word) => COUNTERS.has(word)) ? "other" : null;
+}
+
+/** Whether a key names an energy: `E`, `total_energy`, `E(RHF)`, but not `energy_gap` or `time`. */
+export function namesEnergy(key: string): boolean {
+  return classOfName(key) === "energy" && !/unit/i.test(key);
 }
 
 /** A key that is a unit in brackets leaves the name to the word before it: `E [eV] = -1.5`. */
@@ -117,5 +124,5 @@ function companionUnit(number: CommentNumber, comment: ScannedComment): EnergyUn
  */
 export function saysRelative(number: CommentNumber): boolean {
   const words = [...number.words, number.key ?? ""].flatMap(nameWords);
-  return words.some((word) => /^(?:rel|relative|delta|erel)$/.test(word));
+  return words.some((word) => /^(?:rel|relative|delta|d|erel)$/.test(word));
 }
