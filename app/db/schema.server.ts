@@ -29,7 +29,7 @@ export const answersSchema = z.object({
   energyUnit: z.string().nullable(),
   energyFrom: z.string().nullable(),
   level: z.string().nullable(),
-  energyKind: z.string().default("electronic"),
+  energyKind: z.enum(["electronic", "zero-point", "enthalpy", "free"]).default("electronic"),
   energyTemperature: z.number().nullable().default(null),
 });
 

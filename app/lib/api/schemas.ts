@@ -100,12 +100,12 @@ export const uploadFieldsSchema = z
       .meta({ description: "Unit of these energies; without it the unit must stand beside the number." }),
     energyFrom: z
       .string()
-      .regex(/^(key:.+|field:.+|number:[1-9]\d*)$/s, 'Write "key:NAME" or "number:N".')
+      .regex(/^(key:.+|field:.+|number:[1-9]\d{0,5}|none)$/s, 'Write "key:NAME", "number:N" or "none".')
       .max(200)
       .optional()
       .meta({
         description:
-          "Which number is the energy: key:NAME (the run of characters before = or :, exact in case) or number:N (every number of the comment line counts, from 1).",
+          "Which number is the energy: key:NAME (the run of characters before = or :, exact in case) or number:N (every number of the comment line counts, from 1); none where the comments hold no energy.",
       }),
     energyKind: z.enum(ENERGY_KINDS).optional().meta({ description: "Default: electronic." }),
     energyTemperature: numberText(0.001, 100_000, "A temperature in K, such as 298.15.")
@@ -250,7 +250,10 @@ export const rereadRequestSchema = z
     energyUnit: z.enum(REQUEST_UNITS).optional(),
     energyFrom: uploadFieldsSchema.shape.energyFrom,
     energyKind: z.enum(ENERGY_KINDS).optional(),
-    energyTemperature: z.number().min(0.001).max(100_000).optional(),
+    energyTemperature: z
+      .union([z.number().min(0.001).max(100_000), uploadFieldsSchema.shape.energyTemperature.unwrap()])
+      .optional()
+      .meta(shownAs({ type: "number", minimum: 0.001, maximum: 100_000 }, "K")),
   })
   .meta({ id: "RereadRequest", description: "The new answers; what is left out is open again." });
 

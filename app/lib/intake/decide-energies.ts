@@ -153,13 +153,13 @@ function askNumber(
 ): IntakeQuestion[] {
   const number = energyFromQuestion(findings, elements);
   const likely = findings.proposed ?? findings.candidates[0];
-  const questions = number === null ? [] : [withNone(number, "None of these is an energy")];
+  const questions = number === null ? [] : [withNone(number, "None of these")];
   if (answers.level === null && likely !== undefined) questions.push(askLevel(likely, mode));
   return questions;
 }
 
 function askUnit(candidate: EnergyCandidate, finding: ReturnType<typeof findUnit>): IntakeQuestion {
-  return withNone(energyUnitQuestion(candidate, finding), "It is no energy");
+  return withNone(energyUnitQuestion(candidate, finding), "No energy");
 }
 
 const MAX_LEVELS = 8;
@@ -174,7 +174,7 @@ function askLevel(candidate: EnergyCandidate, mode: DecisionMode): IntakeQuestio
     reason:
       "The energies get the name of their level, so that a second one can stand beside it. Any name will do.",
     options: names.map((name, at) => ({
-      id: `name:${name}`,
+      id: name,
       text: name,
       detail: inFile.includes(name) ? "Stands in the comment line" : "In use in this team",
       proposed: at === 0 && inFile.length > 0,

@@ -103,6 +103,24 @@ export async function readJson<Schema extends z.ZodType>(
   return check(schema, data, "The request is not right");
 }
 
+/** A JSON body, or the same fields as a form sends them. */
+export async function readJsonOrForm<Schema extends z.ZodType>(
+  request: Request,
+  schema: Schema,
+): Promise<z.infer<Schema>> {
+  const type = request.headers.get("content-type") ?? "";
+  if (!/^(multipart\/form-data|application\/x-www-form-urlencoded)\b/i.test(type)) {
+    return readJson(request, schema);
+  }
+  const form = await request.formData().catch(() => {
+    throw new DomainError("invalid", "The form is broken", "The form does not parse.", {
+      extra: { status: 400 },
+    });
+  });
+  const sent = [...form].filter(([, value]) => value !== "");
+  return check(schema, Object.fromEntries(sent), "The request is not right");
+}
+
 /** A JSON answer. */
 export function json(body: unknown, init: { status?: number; location?: string } = {}): Response {
   const headers = new Headers(init.location === undefined ? {} : { location: init.location });

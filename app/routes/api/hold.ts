@@ -1,3 +1,5 @@
-export function loader() {
-  return new Response(null, { status: 404 });
-}
+import { holdFrame } from "~/services/ensembles/decide-frame.server";
+import { decideCall } from "./decide-call.server";
+
+export const action = decideCall(holdFrame);
+export const loader = action;

@@ -1,3 +1,5 @@
-export function loader() {
-  return new Response(null, { status: 404 });
-}
+import { releaseFrame } from "~/services/ensembles/decide-frame.server";
+import { decideCall } from "./decide-call.server";
+
+export const action = decideCall(releaseFrame);
+export const loader = action;

@@ -1,3 +1,26 @@
-export function loader() {
-  return new Response(null, { status: 404 });
-}
+import { rereadRequestSchema } from "~/lib/api/schemas";
+import { accessEnsemble } from "~/services/auth/access.server";
+import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
+import { rereadEnsemble } from "~/services/ensembles/reread-ensemble.server";
+import { answerCall, json, readJsonOrForm } from "./answer-call.server";
+
+export const action = answerCall({
+  async POST({ actor, params, request }) {
+    const { teamId, ensembleId } = await accessEnsemble(actor, "take-in", params.id ?? "");
+    const asked = await readJsonOrForm(request, rereadRequestSchema);
+    await rereadEnsemble({
+      actor,
+      ensembleId,
+      answers: {
+        energyUnit: asked.energyUnit ?? null,
+        energyFrom: asked.energyFrom ?? null,
+        level: asked.level ?? null,
+        energyKind: asked.energyKind ?? "electronic",
+        energyTemperature: asked.energyTemperature ?? null,
+      },
+      kindStated: asked.energyKind !== undefined,
+    });
+    return json(await describeEnsemble(teamId, ensembleId));
+  },
+});
+export const loader = action;

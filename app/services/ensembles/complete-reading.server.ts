@@ -46,7 +46,6 @@ export interface CompletedReading {
  * flight and goes with it.
  *
  * @param options.sources ids of the kept files by position
- * @param options.keep columns of an earlier reading that keep id and place by their name
  * @throws DomainError invalid where a program left unit or level open, or named a number that no frame has
  */
 export async function completeReading(
@@ -58,7 +57,6 @@ export async function completeReading(
     written: WrittenAnswers;
     mode: Omit<DecisionMode, "comment">;
     sources: readonly string[];
-    keep?: ReadonlyMap<string, { id: string; ordinal: number }>;
   },
 ): Promise<CompletedReading> {
   const { ensembleId } = reading;
@@ -86,7 +84,7 @@ export async function completeReading(
   if (settled) await remarkFrames(db, ensembleId, settled.messages);
   if (questions.length > 0) await holdForAnswers(db, ensembleId);
   result.messages.addAll(settled?.messages ?? []);
-  await insertColumns(db, ensembleId, settled?.columns ?? [], options.keep);
+  await insertColumns(db, ensembleId, settled?.columns ?? []);
   await insertQuestions(db, ensembleId, questions);
   await insertMessages(db, ensembleId, listed(result, accepted));
   await insertFiles(reading, options.sources);

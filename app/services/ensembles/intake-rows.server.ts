@@ -71,28 +71,21 @@ export async function insertQuestions(
   }
 }
 
-/**
- * Writes columns of the files themselves in place of those that an earlier reading made.
- *
- * @param keep ids of columns by name: a level that keeps its name keeps its id and its place
- */
+/** Writes the columns that the files themselves hold. */
 export async function insertColumns(
   tx: Queryable,
   ensembleId: string,
   made: readonly NewColumn[],
-  keep: ReadonlyMap<string, { id: string; ordinal: number }> = new Map(),
 ): Promise<void> {
   const next = { energy: 0, property: 0 };
-  for (const { ordinal } of keep.values()) next.energy = Math.max(next.energy, ordinal);
   for (const { data, ...column } of made) {
     const packed = Buffer.from(packColumn(data));
-    const kept = keep.get(column.name);
     next[column.kind] += 1;
     await tx.insert(columns).values({
       ...column,
-      id: kept?.id ?? newId(),
+      id: newId(),
       ensembleId,
-      ordinal: kept?.ordinal ?? next[column.kind],
+      ordinal: next[column.kind],
       data: packed,
       dataSha: createHash("sha256").update(packed).digest(),
       createdAt: new Date(),

@@ -1,6 +1,6 @@
 import { and, asc, eq } from "drizzle-orm";
 import { z } from "zod";
-import { db } from "../../db/client.server.ts";
+import { db, type Queryable } from "../../db/client.server.ts";
 import { frames, intakeMessages, questions } from "../../db/schema.server.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { HoldReason, IntakeMessage, IntakeQuestion, QuestionOption } from "../../lib/intake/report.ts";
@@ -44,8 +44,8 @@ export async function findMessages(ensembleId: string): Promise<IntakeMessage[]>
 }
 
 /** All questions of an ensemble, answered ones too, in the order they were asked. */
-export async function findQuestions(ensembleId: string): Promise<IntakeQuestion[]> {
-  const rows = await db
+export async function findQuestions(ensembleId: string, on: Queryable = db): Promise<IntakeQuestion[]> {
+  const rows = await on
     .select()
     .from(questions)
     .where(eq(questions.ensembleId, ensembleId))

@@ -176,7 +176,7 @@ async function finish(all: Finish): Promise<TakenIn> {
   }
   const result = await upload.reading.end();
   const done = await completeReading(upload.reading, result, {
-    answers: { ...written, energyKind: fields.energyKind ?? "electronic" },
+    answers: written,
     kindStated: fields.energyKind !== undefined,
     written,
     mode: {

@@ -1,0 +1,133 @@
+import { and, eq, isNull } from "drizzle-orm";
+import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
+import { ensembles, frames, intakeMessages } from "../../db/schema.server.ts";
+import { DomainError } from "../../lib/errors.ts";
+import { whyNotReleased } from "../../lib/intake/release.ts";
+import type { FrameState } from "../../lib/intake/report.ts";
+import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
+import { notFound } from "../http.server.ts";
+import { writeEntry } from "../logbook/write-entry.server.ts";
+import { acceptedSha } from "./accepted-frames.server.ts";
+import { countFrames } from "./intake-rows.server.ts";
+
+type At = Grant & { ensembleId: string };
+
+interface Decision {
+  actor: Actor;
+  ensembleId: string;
+  /** From 1. */
+  frame: number;
+  reason: string;
+}
+
+/** Ensemble first, frame second, always in this order: two people at once wait for each other and never deadlock. */
+async function lock(tx: Transaction, at: At, number: number) {
+  const rows = await tx
+    .select({ version: ensembles.version })
+    .from(ensembles)
+    .where(and(eq(ensembles.id, at.ensembleId), eq(ensembles.teamId, at.teamId), isNull(ensembles.deletedAt)))
+    .for("update");
+  const found = await tx
+    .select()
+    .from(frames)
+    .where(and(eq(frames.ensembleId, at.ensembleId), eq(frames.number, number)))
+    .for("update");
+  const [ensemble, frame] = [rows[0], found[0]];
+  if (ensemble === undefined || frame === undefined) throw notFound();
+  return { version: ensemble.version, frame };
+}
+
+async function write(
+  tx: Transaction,
+  at: At,
+  number: number,
+  change: { state: FrameState; holdReason: string | null; note: string | null },
+  version: number,
+): Promise<void> {
+  await tx
+    .update(frames)
+    .set({ ...change, note: change.note?.slice(0, 1000) ?? null })
+    .where(and(eq(frames.ensembleId, at.ensembleId), eq(frames.number, number)));
+  await tx
+    .update(ensembles)
+    .set({
+      ...(await countFrames(tx, at.ensembleId)),
+      acceptedSha: await acceptedSha(tx, at.ensembleId),
+      version: version + 1,
+      changedAt: new Date(),
+    })
+    .where(eq(ensembles.id, at.ensembleId));
+}
+
+const conflict = (title: string, detail: string) => new DomainError("conflict", title, detail);
+
+/**
+ * Holds a frame: it is kept and left out of every computation from now on.
+ *
+ * @throws DomainError conflict where it is held already
+ */
+export async function holdFrame({ actor, ensembleId, frame: number, reason }: Decision): Promise<FrameState> {
+  const at = await accessEnsemble(actor, "compute", ensembleId);
+  await inTransaction(async (tx) => {
+    const { version, frame } = await lock(tx, at, number);
+    if (frame.state === "held") {
+      throw conflict("Held already", `Frame ${number} is held already: ${frame.note ?? frame.holdReason}`);
+    }
+    await write(tx, at, number, { state: "held", holdReason: "by-hand", note: reason }, version);
+    await writeEntry(tx, at, at, { type: "hold", data: { frame: number, reason } });
+  });
+  return "held";
+}
+
+/** The words that came with the frame, where its remark is among those that are listed. */
+async function remarkOf(tx: Transaction, at: At, number: number): Promise<string | null> {
+  const rows = await tx
+    .select({ message: intakeMessages.message })
+    .from(intakeMessages)
+    .where(
+      and(
+        eq(intakeMessages.ensembleId, at.ensembleId),
+        eq(intakeMessages.frame, number),
+        eq(intakeMessages.severity, "remark"),
+      ),
+    )
+    .limit(1);
+  return rows[0]?.message ?? null;
+}
+
+/**
+ * Releases a held frame: it takes part again. Another species or configuration, and what cannot be read, stay held.
+ *
+ * @throws DomainError conflict where it is not held, or may not be released; the refusal stands in the logbook
+ */
+export async function releaseFrame({
+  actor,
+  ensembleId,
+  frame: number,
+  reason,
+}: Decision): Promise<FrameState> {
+  const at = await accessEnsemble(actor, "compute", ensembleId);
+  const outcome = await inTransaction(async (tx) => {
+    const { version, frame } = await lock(tx, at, number);
+    if (frame.state !== "held") throw conflict("Not held", `Frame ${number} is not held.`);
+    const why = whyNotReleased(frame.holdReason);
+    if (why !== null) return { refused: why };
+    // What only its reader held comes back with a remark: somebody decided against it.
+    const state = frame.readState === "held" ? "remarked" : frame.readState;
+    const note = frame.readState === "accepted" ? null : await remarkOf(tx, at, number);
+    await write(
+      tx,
+      at,
+      number,
+      { state, holdReason: null, note: note ?? (state === "remarked" ? reason : null) },
+      version,
+    );
+    const heldFor = frame.holdReason ?? "";
+    await writeEntry(tx, at, at, { type: "release", data: { frame: number, reason, heldFor } });
+    return { state };
+  });
+  if (outcome.state) return outcome.state;
+  const why = outcome.refused ?? "";
+  await writeEntry(db, at, at, { type: "release-refused", data: { frame: number, reason, why } });
+  throw conflict("It stays held", `Frame ${number} cannot be released: ${why}`);
+}

@@ -1,0 +1,194 @@
+import { and, asc, eq, inArray, isNull, like, ne, or } from "drizzle-orm";
+import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
+import {
+  columns,
+  ensembleFiles,
+  ensembles,
+  frameBlocks,
+  frames,
+  intakeMessages,
+  questions,
+} from "../../db/schema.server.ts";
+import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
+import { notFound } from "../http.server.ts";
+import { log } from "../log.server.ts";
+import { writeEntry } from "../logbook/write-entry.server.ts";
+import { acceptedSha } from "./accepted-frames.server.ts";
+import { completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
+import { countFrames, levelsInUse } from "./intake-rows.server.ts";
+import { Reading } from "./reading.server.ts";
+import { siftAfterIntake } from "./sift-after-intake.server.ts";
+import { readSource } from "./source-writer.server.ts";
+
+type At = Grant & { ensembleId: string };
+
+/** Columns that the files of an upload hold themselves; others came from elsewhere and stay. */
+const fromFiles = or(like(columns.origin, "key:%"), like(columns.origin, "number:%"));
+
+/** Frames that a person held, with the reason: a decision that outlives the reading. */
+async function heldByHand(tx: Transaction, ensembleId: string) {
+  return tx
+    .select({ number: frames.number, note: frames.note })
+    .from(frames)
+    .where(and(eq(frames.ensembleId, ensembleId), eq(frames.holdReason, "by-hand")));
+}
+
+/** Frames that a person released although their reader held them. */
+async function releasedByHand(tx: Transaction, ensembleId: string) {
+  return tx
+    .select({ number: frames.number, note: frames.note })
+    .from(frames)
+    .where(and(eq(frames.ensembleId, ensembleId), eq(frames.readState, "held"), ne(frames.state, "held")));
+}
+
+async function removeOld(tx: Transaction, ensembleId: string): Promise<void> {
+  for (const table of [frames, frameBlocks, intakeMessages, questions, ensembleFiles]) {
+    await tx.delete(table).where(eq(table.ensembleId, ensembleId));
+  }
+}
+
+async function moveNew(tx: Transaction, from: string, to: string): Promise<void> {
+  for (const table of [frames, frameBlocks, intakeMessages, questions, ensembleFiles]) {
+    await tx.update(table).set({ ensembleId: to }).where(eq(table.ensembleId, from));
+  }
+}
+
+/** A level that keeps its name keeps its id and its place among the levels: recipes and hues go on meaning it. */
+async function replaceColumns(tx: Transaction, from: string, to: string): Promise<void> {
+  const old = await tx
+    .select({ id: columns.id, name: columns.name, ordinal: columns.ordinal })
+    .from(columns)
+    .where(and(eq(columns.ensembleId, to), fromFiles));
+  await tx.delete(columns).where(and(eq(columns.ensembleId, to), fromFiles));
+  const made = await tx
+    .select({ id: columns.id, name: columns.name, ordinal: columns.ordinal })
+    .from(columns)
+    .where(eq(columns.ensembleId, from));
+  for (const { id, name, ordinal } of made) {
+    const same = old.find((column) => column.name === name);
+    await tx
+      .update(columns)
+      .set({ ensembleId: to, id: same?.id ?? id, ordinal: same?.ordinal ?? ordinal })
+      .where(eq(columns.id, id));
+  }
+}
+
+async function keepDecisions(
+  tx: Transaction,
+  ensembleId: string,
+  held: { number: number; note: string | null }[],
+  released: { number: number; note: string | null }[],
+): Promise<void> {
+  for (const { number, note } of held) {
+    await tx
+      .update(frames)
+      .set({ state: "held", holdReason: "by-hand", note })
+      .where(and(eq(frames.ensembleId, ensembleId), eq(frames.number, number), ne(frames.state, "held")));
+  }
+  for (const { number, note } of released) {
+    await tx
+      .update(frames)
+      .set({ state: "remarked", holdReason: null, note })
+      .where(
+        and(
+          eq(frames.ensembleId, ensembleId),
+          eq(frames.number, number),
+          inArray(frames.holdReason, ["far-off", "waits-for-answer"]),
+        ),
+      );
+  }
+}
+
+/** The new reading takes the place of the old one, in one moment. */
+async function adopt(tx: Transaction, at: At, readId: string, questionCount: number): Promise<void> {
+  const rows = await tx
+    .select()
+    .from(ensembles)
+    .where(and(eq(ensembles.id, at.ensembleId), eq(ensembles.teamId, at.teamId), isNull(ensembles.deletedAt)))
+    .for("update");
+  const [read] = await tx.select().from(ensembles).where(eq(ensembles.id, readId));
+  const old = rows[0];
+  if (old === undefined || read === undefined) throw notFound();
+  const held = await heldByHand(tx, old.id);
+  const released = await releasedByHand(tx, old.id);
+  await removeOld(tx, old.id);
+  await moveNew(tx, readId, old.id);
+  await replaceColumns(tx, readId, old.id);
+  await keepDecisions(tx, old.id, held, released);
+  const { answers, formula, atoms, elements, bonds, atomLabels, identity } = read;
+  const { chirality, chiralityNote, readerVersion } = read;
+  const molecule = {
+    answers,
+    formula,
+    atoms,
+    elements,
+    bonds,
+    atomLabels,
+    identity,
+    chirality,
+    chiralityNote,
+  };
+  await tx
+    .update(ensembles)
+    .set({ ...molecule, readerVersion })
+    .where(eq(ensembles.id, old.id));
+  const counts = await countFrames(tx, old.id);
+  await tx
+    .update(ensembles)
+    .set({
+      ...counts,
+      openQuestions: questionCount,
+      acceptedSha: await acceptedSha(tx, old.id),
+      version: old.version + 1,
+      changedAt: new Date(),
+    })
+    .where(eq(ensembles.id, old.id));
+  await tx.delete(ensembles).where(eq(ensembles.id, readId));
+  await writeEntry(tx, at, at, {
+    type: "reread",
+    data: { before: old.answers, after: answers, questions: questionCount, ...counts },
+  });
+}
+
+/**
+ * Reads the stored files of an ensemble again with other answers; the ensemble keeps its id. What a person decided on
+ * single frames stays decided. A program that leaves unit or level open is refused and nothing changes; a person is
+ * asked.
+ */
+export async function rereadEnsemble(options: {
+  actor: Actor;
+  ensembleId: string;
+  answers: WrittenAnswers;
+  kindStated: boolean;
+}): Promise<void> {
+  const at = await accessEnsemble(options.actor, "take-in", options.ensembleId);
+  const { answers } = options;
+  const interactive = options.actor.kind === "user";
+  const files = await db
+    .select({ name: ensembleFiles.name, sourceId: ensembleFiles.sourceId })
+    .from(ensembleFiles)
+    .where(eq(ensembleFiles.ensembleId, at.ensembleId))
+    .orderBy(asc(ensembleFiles.position));
+  const reading = new Reading(at.teamId, answers.energyFrom === "none" ? null : answers.energyFrom);
+  try {
+    await reading.begin(at);
+    for (const file of files) await reading.readFile(file.name, readSource(file.sourceId));
+    const result = await reading.end();
+    const done = await completeReading(reading, result, {
+      answers,
+      kindStated: options.kindStated,
+      written: answers,
+      mode: {
+        refuseOpen: !interactive,
+        confirmUnit: interactive,
+        knownLevels: interactive ? await levelsInUse(at.teamId) : [],
+      },
+      sources: files.map((file) => file.sourceId),
+    });
+    await inTransaction((tx) => adopt(tx, at, reading.ensembleId, done.questions));
+  } catch (error) {
+    await reading.discard().catch((second) => log.warn({ err: second }, "reading not taken back"));
+    throw error;
+  }
+  await siftAfterIntake(at);
+}
