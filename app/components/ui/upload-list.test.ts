@@ -20,7 +20,7 @@ const taken: Taken = {
   accepted: 397,
   remarked: 5,
   held: 3,
-  questions: 2,
+  questions: 0,
   already: false,
 };
 const refusal = { title: "Refused", detail: "The file has no frames.", faults: [], existing: null };
@@ -51,7 +51,7 @@ describe("uploadList", () => {
     const reading = uploadList(sending, { type: "progress", id: 1, sent: 23 * MB + 512, now: 20_000 });
     expect(reading[0]).toMatchObject({ state: "reading", sent: 23 * MB });
     const done = uploadList(reading, { type: "taken", id: 1, taken });
-    expect(uploadWords(only(done))).toBe("400 frames read, 5 remarks, 3 held. 2 questions first.");
+    expect(uploadWords(only(done))).toBe("400 frames read, 5 remarks, 3 held.");
   });
 
   it("never goes back once an upload has ended", () => {
@@ -120,6 +120,15 @@ describe("words", () => {
   it("estimate nothing in the first half second", () => {
     const list = play(add(1), start(1), { type: "progress", id: 1, sent: MB, now: 1400 });
     expect(secondsLeft(only(list))).toBeNull();
+  });
+
+  it("put the open questions first, since until the answer all frames wait", () => {
+    const list = play(add(1), start(1), {
+      type: "taken",
+      id: 1,
+      taken: { ...taken, held: 400, questions: 2 },
+    });
+    expect(uploadWords(only(list))).toBe("400 frames read. 2 questions first; nothing is computed before.");
   });
 
   it("say that the same bytes are here already", () => {

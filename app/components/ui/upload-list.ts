@@ -169,11 +169,14 @@ export function uploadWords(upload: Upload): string {
 
 function takenWords(taken: Taken): string {
   if (taken.already) return `Already here as ${taken.name}: the same bytes make no second ensemble.`;
+  // Until the answer every frame that waits for it counts as held; that is no news yet.
+  if (taken.questions > 0) {
+    return `${plural(taken.frames, "frame")} read. ${plural(taken.questions, "question")} first; nothing is computed before.`;
+  }
   const parts = [`${plural(taken.frames, "frame")} read`];
   if (taken.remarked > 0) parts.push(`${plural(taken.remarked, "remark")}`);
   if (taken.held > 0) parts.push(`${formatCount(taken.held)} held`);
-  const asks = taken.questions > 0 ? `. ${plural(taken.questions, "question")} first.` : ".";
-  return parts.join(", ") + asks;
+  return `${parts.join(", ")}.`;
 }
 
 function spanLeft(seconds: number): string {

@@ -14,12 +14,26 @@ interface Acts {
 /** Uploads under way and over, each with its bar, result or refusal. */
 export function UploadList({ uploads, ...acts }: Acts & { uploads: readonly Upload[] }) {
   if (uploads.length === 0) return null;
+  const ended = uploads.filter(({ state }) => !["waiting", "sending", "reading"].includes(state));
   return (
-    <ul aria-label="Files being taken in" className="border-b border-rule">
-      {uploads.map((upload) => (
-        <UploadRow key={upload.id} upload={upload} {...acts} />
-      ))}
-    </ul>
+    <div>
+      <ul aria-label="Files being taken in" className="border-b border-rule">
+        {uploads.map((upload) => (
+          <UploadRow key={upload.id} upload={upload} {...acts} />
+        ))}
+      </ul>
+      {ended.length > 2 ? (
+        <p className="mt-2 text-right text-xs">
+          <TextButton
+            onClick={() => {
+              for (const { id } of ended) acts.onDismiss(id);
+            }}
+          >
+            Put all away
+          </TextButton>
+        </p>
+      ) : null}
+    </div>
   );
 }
 
@@ -73,11 +87,13 @@ function StateBadge({ state }: { state: Upload["state"] }) {
 const SHOWN_FAULTS = 5;
 
 function Faults({ refusal }: { refusal: Refusal }) {
-  if (refusal.faults.length === 0) return null;
-  const more = refusal.faults.length - SHOWN_FAULTS;
+  // What the sentence above says already is not said again.
+  const faults = refusal.faults.filter(({ message }) => !refusal.detail?.includes(message));
+  if (faults.length === 0) return null;
+  const more = faults.length - SHOWN_FAULTS;
   return (
     <ul className="grid gap-1 text-xs text-ink-2">
-      {refusal.faults.slice(0, SHOWN_FAULTS).map((fault, i) => (
+      {faults.slice(0, SHOWN_FAULTS).map((fault, i) => (
         <li key={i}>
           {faultPlace(fault)}
           {fault.message}
@@ -88,7 +104,9 @@ function Faults({ refusal }: { refusal: Refusal }) {
   );
 }
 
+/** File, line and frame, unless the message begins with them. */
 function faultPlace(fault: Refusal["faults"][number]): string {
+  if (fault.file && fault.message.startsWith(fault.file)) return "";
   const place = [
     fault.file,
     fault.line === undefined ? null : `line ${formatCount(fault.line)}`,
