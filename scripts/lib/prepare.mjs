@@ -1,6 +1,7 @@
 import { existsSync } from "node:fs";
 import path from "node:path";
 import { openDatabase } from "../database.mjs";
+import { needProgram } from "./debian.mjs";
 import { needPackages } from "./packages.mjs";
 import { portIsFree, ROOT, StartError } from "./processes.mjs";
 import { localSecrets } from "./secrets.mjs";
@@ -59,7 +60,8 @@ async function checkSettings() {
  */
 export async function prepare(say) {
   const own = !process.env.DATABASE_URL;
-  await needPackages(say);
+  // Side by side, since both wait for the network.
+  await Promise.all([needPackages(say), own ? needProgram("mariadbd", "mariadb-server", say) : null]);
   await checkSettings();
   if (!own) return null;
   const database = await openDatabase({ folder: dataFolder(), say });

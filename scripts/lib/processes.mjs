@@ -49,10 +49,17 @@ export function run(command, args, { log, env, cwd = ROOT, allowFailure = false 
     child.on("exit", (code, signal) => {
       running.delete(child);
       if (code === 0 || allowFailure) return resolve(code ?? 1);
-      const tail = log ? `\n${tailOf(log)}\nAll of it: ${log}` : "";
+      const tail = log ? `\n${heartOf(log)}\nAll of it: ${log}` : "";
       reject(new StartError(`${command} ${args.join(" ")} ended with ${signal ?? code}.${tail}`));
     });
   });
+}
+
+/** Where a log first speaks of an error, else its end. */
+function heartOf(file) {
+  const lines = readFileSync(file, "utf8").trimEnd().split("\n");
+  const first = lines.findIndex((line) => /\berror\b|^E: |✗|could not/i.test(line));
+  return (first < 0 ? lines.slice(-15) : lines.slice(first, first + 15)).join("\n");
 }
 
 export function tailOf(file, lines = 15) {
