@@ -99,7 +99,8 @@ function determinant(m: number[][]): number {
 function svd3(h: number[][]): { u: number[][]; v: number[][] } {
   const a = h.map((row) => [...row]);
   const v = [0, 1, 2].map((i) => [0, 1, 2].map((j) => (i === j ? 1 : 0)));
-  for (let sweep = 0; sweep < 60; sweep++) {
+  for (let sweep = 0, turned = true; turned && sweep < 60; sweep++) {
+    turned = false;
     for (const [p, q] of [
       [0, 1],
       [0, 2],
@@ -107,7 +108,8 @@ function svd3(h: number[][]): { u: number[][]; v: number[][] } {
     ] as const) {
       const dot = (i: number, j: number) => a.reduce((s, row) => s + row[i]! * row[j]!, 0);
       const gamma = dot(p, q);
-      if (Math.abs(gamma) < 1e-300) continue;
+      if (gamma === 0 || gamma * gamma <= 1e-34 * dot(p, p) * dot(q, q)) continue;
+      turned = true;
       const zeta = (dot(q, q) - dot(p, p)) / (2 * gamma);
       const t = (zeta >= 0 ? 1 : -1) / (Math.abs(zeta) + Math.sqrt(1 + zeta * zeta));
       const c = 1 / Math.sqrt(1 + t * t);

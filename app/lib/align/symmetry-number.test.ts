@@ -140,6 +140,25 @@ describe("symmetry number", () => {
     expect(symmetryNumber(alkaneGraph(220), alkane(220, torsions))).toBe(1);
   });
 
+  it("does not count an atom that ends more than 0.5 Å from its place, though no distance changes by 1.0 Å", () => {
+    // Two hydrogens of one CH2 drawn together to 0.8 Å: exchanged, each lies 0.8 Å off, an RMSD of 0.092 Å.
+    const carbons = 50;
+    const torsions = Array.from({ length: 47 }, (_, k) => [180, 65, 180, -65, 180, 180, 65][k % 7]!);
+    const points = alkane(carbons, torsions);
+    const [h, i] = [carbons + 3 + 2 * 20, carbons + 4 + 2 * 20];
+    const drawn = points.map((p, a) => {
+      if (a !== h && a !== i) return p;
+      const other = points[a === h ? i : h]!;
+      const between = Math.hypot(...p.map((v, k) => v - other[k]!));
+      return p.map((v, k) => (v + other[k]!) / 2 + (0.4 * (v - other[k]!)) / between);
+    });
+    expect(symmetryNumber(alkaneGraph(carbons), drawn)).toBe(1);
+    const closer = points.map((p, a) =>
+      a === h || a === i ? drawn[h]!.map((v, k) => (v + drawn[i]![k]!) / 2) : p,
+    );
+    expect(symmetryNumber(alkaneGraph(carbons), closer)).toBe(2);
+  });
+
   it("is null where the work bound is met or not all exchanges are known", () => {
     expect(symmetryNumber(cubane(), cube, 10)).toBeNull();
     const plan = makePlan(cubane(), "all", { workLimit: 10 });
