@@ -57,7 +57,8 @@ interface Internals {
   renderer: {
     devicePixelRatio: number;
     domElement: HTMLCanvasElement;
-    getContext(): WebGL2RenderingContext;
+    /** Of the canvas, or of one off the screen whose pictures are handed to it. */
+    getContext(): WebGL2RenderingContext | null;
     supportedExtensions(): unknown;
     isWebGL1(): boolean;
   };
@@ -93,9 +94,11 @@ const SEGMENTS_A_GROUP = 16_000;
 /**
  * Opens a view in an element that has a size.
  *
- * @throws Error where the browser gives no WebGL 2
+ * @param onLost the browser took the context away: dispose of the view and open another
+ * @throws Error or a text of the library where the browser gives no WebGL 2
  */
-export function openGlView(library: Library, host: HTMLElement, ground: string): GlView {
+export function openGlView(library: Library, host: HTMLElement, ground: string, onLost: () => void): GlView {
+  if (!hasWebGl2()) throw new Error("no WebGL 2");
   const { made: viewer, undo } = withoutLeftovers(() =>
     library.createViewer(host, {
       backgroundColor: ground,
@@ -105,18 +108,22 @@ export function openGlView(library: Library, host: HTMLElement, ground: string):
     }),
   );
   const internals = viewer as unknown as Internals;
-  if (!internals?.renderer?.getContext() || internals.renderer.isWebGL1()) {
+  const context = internals.renderer.getContext();
+  const canvas = internals.renderer.domElement;
+  if (!context || internals.renderer.isWebGL1()) {
     undo();
     throw new Error("no WebGL 2");
   }
+  context.canvas.addEventListener("webglcontextlost", onLost);
   viewer.setCameraParameters({ fov: FIELD, z: CAMERA_HEIGHT });
   const kit = kitOf(viewer, internals);
   const lines = newMaterial(kit, LINE_VERTEX, LINE_FRAGMENT, {
     thickness: { type: "f", value: 1 },
   });
   const placed: { mesh: Mesh; place: number }[] = [];
-  const clear = () => {
-    for (const { mesh } of placed.splice(0)) {
+  let shownGround = ground;
+  const remove = (meshes: readonly { mesh: Mesh }[]) => {
+    for (const { mesh } of meshes) {
       internals.modelGroup.remove(mesh);
       mesh.geometry.dispose();
     }
@@ -128,10 +135,13 @@ export function openGlView(library: Library, host: HTMLElement, ground: string):
     placed.push({ mesh, place });
   };
   return {
-    canvas: internals.renderer.domElement,
+    canvas,
     draw(scene, stage, palette) {
-      clear();
-      viewer.setBackgroundColor(palette.view.hex, 1);
+      const old = placed.splice(0);
+      // Redraws at once, so only where it has to, and before the old meshes go: an empty scene upsets the renderer.
+      if (shownGround !== palette.view.hex) viewer.setBackgroundColor(palette.view.hex, 1);
+      shownGround = palette.view.hex;
+      remove(old);
       add(faintLines(scene, palette), lines, 0);
       scene.strong.forEach((figure, place) => {
         const segments = strongSticks(scene, figure, place, palette);
@@ -159,46 +169,51 @@ export function openGlView(library: Library, host: HTMLElement, ground: string):
       viewer.setView([-x, -y, -z, CAMERA_HEIGHT - distance, ...camera.rotation]);
     },
     dispose() {
-      clear();
+      remove(placed.splice(0));
+      // The next view may draw with this context, and would stumble over attributes without buffers.
+      const attributes: number = context.getParameter(context.MAX_VERTEX_ATTRIBS) ?? 0;
+      for (let k = 0; k < attributes; k++) context.disableVertexAttribArray(k);
       undo();
       internals.divwatcher?.disconnect();
       internals.intwatcher?.disconnect();
-      internals.renderer.getContext()?.getExtension("WEBGL_lose_context")?.loseContext();
-      internals.renderer.domElement.remove();
+      context.canvas.removeEventListener("webglcontextlost", onLost);
+      // Off the screen the library keeps one context for all views of the page: the next one draws with it.
+      if (context.canvas === canvas) context.getExtension("WEBGL_lose_context")?.loseContext();
+      canvas.remove();
+      // Browsers keep a canvas for a while; what hangs on it need not wait with it.
+      Reflect.deleteProperty(canvas, "_3dmol_viewer");
     },
   };
 }
 
+/** Asked first: the library writes its failure to the console. */
+function hasWebGl2(): boolean {
+  const probe = document.createElement("canvas").getContext("webgl2");
+  probe?.getExtension("WEBGL_lose_context")?.loseContext();
+  return probe !== null;
+}
+
 /**
- * The library binds listeners to the window and the body and never takes them off; they are caught while it starts, so
- * that leaving the page leaves nothing behind.
+ * The library binds listeners to the window, the body and its canvas and never takes them off; they are caught while it
+ * starts, so that leaving the page leaves nothing behind.
  */
 function withoutLeftovers<T>(make: () => T): { made: T; undo: () => void } {
   const caught: (() => void)[] = [];
-  const targets: EventTarget[] = [window, document.body];
-  for (const target of targets) {
-    const plain = target.addEventListener;
-    target.addEventListener = function (
-      this: EventTarget,
-      ...args: Parameters<EventTarget["addEventListener"]>
-    ) {
-      caught.push(() => target.removeEventListener(args[0], args[1], args[2]));
-      plain.apply(target, args);
-    };
-  }
+  const undo = () => {
+    for (const take of caught.splice(0)) take();
+  };
+  const plain = EventTarget.prototype.addEventListener;
+  EventTarget.prototype.addEventListener = function (...args) {
+    caught.push(() => this.removeEventListener(...args));
+    plain.apply(this, args);
+  };
   try {
-    return {
-      made: make(),
-      undo: () => {
-        for (const take of caught.splice(0)) take();
-      },
-    };
+    return { made: make(), undo };
   } catch (error) {
-    for (const take of caught) take();
+    undo();
     throw error;
   } finally {
-    // The wrappers were own properties; the inherited method comes back by itself.
-    for (const target of targets) Reflect.deleteProperty(target, "addEventListener");
+    EventTarget.prototype.addEventListener = plain;
   }
 }
 

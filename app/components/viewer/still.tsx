@@ -1,4 +1,4 @@
-import type { ReactNode } from "react";
+import { memo, type ReactNode } from "react";
 import { type Camera, homeCamera } from "~/lib/view/camera";
 import { type Mark, type Token, viewMarks } from "~/lib/view/marks";
 import { buildScene, type Figure, type Scene, type SceneInput } from "~/lib/view/scene";
@@ -25,7 +25,7 @@ const MOST_FOG = 0.45;
  * The view without WebGL: the same scene from the same camera as SVG. It stands in until the canvas is ready, where
  * there is none, in print, and wherever a page shows a small picture.
  */
-export function Still({
+export const Still = memo(function Still({
   scene,
   stage,
   camera,
@@ -53,7 +53,7 @@ export function Still({
       </g>
     </svg>
   );
-}
+});
 
 /** A still picture from data alone, at a fixed size. */
 export function StillPicture({
@@ -158,7 +158,9 @@ function Sticks({
   cell: Cell;
 }) {
   const casing = tokenColour(figure.held && !figure.change ? "held-edge" : "view");
-  const clear = (z: number) => 1 - fog(z, stage.reach);
+  // Mixed with the ground, not translucent: where sticks meet they would darken each other.
+  const paint = (token: Token, z: number) =>
+    `color-mix(in srgb, ${tokenColour(token)} ${Math.round(100 * (1 - fog(z, stage.reach)))}%, ${tokenColour("view")})`;
   return pieces(scene, figure, thin, stage.scale * camera.zoom, projector(stage, camera, cell)).map(
     (piece) =>
       piece.to === null ? (
@@ -167,8 +169,7 @@ function Sticks({
           cx={piece.from.x.toFixed(1)}
           cy={piece.from.y.toFixed(1)}
           r={(piece.width / 2).toFixed(1)}
-          fill={tokenColour(piece.colours[0])}
-          fillOpacity={clear(piece.z).toFixed(2)}
+          fill={paint(piece.colours[0], piece.z)}
         />
       ) : (
         <g key={piece.key} strokeLinecap="round" strokeWidth={piece.width.toFixed(1)}>
@@ -176,23 +177,22 @@ function Sticks({
             d={segment(piece.from, piece.to)}
             stroke={casing}
             strokeWidth={(piece.width + 2 * CASING).toFixed(1)}
+            strokeLinecap="butt"
           />
-          <g strokeOpacity={clear(piece.z).toFixed(2)}>
-            {piece.colours[0] === piece.colours[1] ? (
-              <path d={segment(piece.from, piece.to)} stroke={tokenColour(piece.colours[0])} />
-            ) : (
-              <>
-                <path
-                  d={segment(piece.from, half(piece.from, piece.to))}
-                  stroke={tokenColour(piece.colours[0])}
-                />
-                <path
-                  d={segment(half(piece.from, piece.to), piece.to)}
-                  stroke={tokenColour(piece.colours[1])}
-                />
-              </>
-            )}
-          </g>
+          {piece.colours[0] === piece.colours[1] ? (
+            <path d={segment(piece.from, piece.to)} stroke={paint(piece.colours[0], piece.z)} />
+          ) : (
+            <>
+              <path
+                d={segment(piece.from, half(piece.from, piece.to))}
+                stroke={paint(piece.colours[0], piece.z)}
+              />
+              <path
+                d={segment(half(piece.from, piece.to), piece.to)}
+                stroke={paint(piece.colours[1], piece.z)}
+              />
+            </>
+          )}
         </g>
       ),
   );

@@ -39,7 +39,7 @@ export function useGestures(
   view: View,
   alone: boolean,
   onAtom: (atom: number) => void,
-): { handlers: Handlers; hovered: { atom: number; figure: Figure } | null } {
+): { handlers: Handlers; touch: string; hovered: { atom: number; figure: Figure } | null } {
   const [surface, setSurface] = useState<HTMLDivElement | null>(null);
   const [focused, setFocused] = useState(false);
   const [over, setOver] = useState<{ atom: number; figure: Figure } | null>(null);
@@ -96,7 +96,6 @@ export function useGestures(
 
   const handlers: Handlers = {
     ref: setSurface,
-    style: { touchAction: alone || focused ? "none" : "pan-y" },
     onPointerDown(event) {
       event.currentTarget.setPointerCapture(event.pointerId);
       pointers.current.set(event.pointerId, { x: event.clientX, y: event.clientY });
@@ -122,7 +121,12 @@ export function useGestures(
     },
   };
   // A hovered atom of a scene that is gone must not be marked in the next one.
-  return { handlers, hovered: over && scene.strong.includes(over.figure) ? over : null };
+  return {
+    handlers,
+    // Class, not style: the page's policy allows no style in the markup.
+    touch: alone || focused ? "touch-none" : "touch-pan-y",
+    hovered: over && scene.strong.includes(over.figure) ? over : null,
+  };
 }
 
 function onKey(event: KeyboardEvent, { stage, setCamera, reset }: View): boolean {

@@ -32,22 +32,20 @@ export default function ViewerCanvas({ scene, stage, camera, onReady, onFail }: 
 
   useEffect(() => {
     if (!host.current) return;
+    const lost = () => {
+      if (restarts < MOST_RESTARTS) setRestarts(restarts + 1);
+      else told.current.onFail();
+    };
     let opened: GlView;
     try {
-      opened = openGlView(library, host.current, ground.current);
+      opened = openGlView(library, host.current, ground.current, lost);
     } catch {
       // The library throws texts and errors alike; whatever it was, the still picture does the work.
       told.current.onFail();
       return;
     }
-    const lost = () => {
-      if (restarts < MOST_RESTARTS) setRestarts(restarts + 1);
-      else told.current.onFail();
-    };
-    opened.canvas.addEventListener("webglcontextlost", lost);
     setView(opened);
     return () => {
-      opened.canvas.removeEventListener("webglcontextlost", lost);
       opened.dispose();
       setView(null);
       told.current.onReady(null);

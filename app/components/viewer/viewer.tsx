@@ -71,29 +71,28 @@ export function Viewer(props: ViewerProps) {
       : lead && picked.length > 0
         ? [pickText(scene, lead, picked)]
         : [];
-  const marks = useMemo(
-    () =>
-      viewMarks({
-        scene,
-        stage,
-        camera,
-        picked,
-        pickText: first ? `${first.label} ${first.text}` : null,
-        numbers,
-        hovered: gestures.hovered,
-      }),
-    [scene, stage, camera, picked, first, numbers, gestures.hovered],
+  const text = first ? `${first.label} ${first.text}` : null;
+  const drawn = useMemo(
+    () => ({ scene, stage, camera, picked, pickText: text, numbers }),
+    [scene, stage, camera, picked, text, numbers],
   );
+  const marks = useMemo(() => viewMarks({ ...drawn, hovered: gestures.hovered }), [drawn, gestures.hovered]);
   const words = sceneWords(scene, caption);
   const help = useId();
+  const picture = useMemo(
+    () => ({ scene, stage, camera, marks, label: words }),
+    [scene, stage, camera, marks, words],
+  );
+  // Behind the canvas it is there for print alone: drawn again when things stand still, not with every movement.
+  const stillPicture = useQuiet(picture, canvas.element !== null);
   const still = useRef<HTMLDivElement>(null);
   const save = async () => {
-    const picture = await import("./picture");
+    const tools = await import("./picture");
     const title = props.title ?? caption.strong;
-    const molecules = canvas.element ?? (await picture.drawnStill(still.current));
+    const molecules = canvas.element ?? (await tools.drawnStill(still.current));
     const subtitle = `${caption.strong} ${caption.rest}`.trim();
-    picture.saveAs(
-      await picture.pictureOf({
+    tools.saveAs(
+      await tools.pictureOf({
         molecules,
         marks,
         width: stage.width,
@@ -101,7 +100,7 @@ export function Viewer(props: ViewerProps) {
         title,
         subtitle,
       }),
-      picture.fileName(title),
+      tools.fileName(title),
     );
   };
   const { Canvas } = canvas;
@@ -109,11 +108,11 @@ export function Viewer(props: ViewerProps) {
     <figure className="min-w-0">
       <div
         ref={fullScreen.box}
-        className="relative h-62 overflow-hidden rounded-md border border-rule-2 bg-view lg:h-80 xl:h-98 print:h-98"
+        className="relative h-62 overflow-hidden rounded-md border border-rule-2 bg-view lg:h-80 xl:h-98 print:h-98 [&:fullscreen]:rounded-none [&:fullscreen]:border-0"
       >
         <div ref={view.box} className="absolute inset-0">
           <div ref={still} className={canvas.element ? "hidden print:block print:size-full" : "size-full"}>
-            <Still scene={scene} stage={stage} camera={camera} marks={marks} label={words} />
+            <Still {...stillPicture} />
           </div>
           {Canvas && scene.strong.length > 0 ? (
             <Canvas
@@ -142,17 +141,17 @@ export function Viewer(props: ViewerProps) {
             // biome-ignore lint/a11y/noNoninteractiveTabindex: an application takes the keys that turn and zoom it
             tabIndex={0}
             {...gestures.handlers}
-            className={`absolute inset-0 -outline-offset-2 print:hidden ${gestures.hovered ? "cursor-pointer" : "cursor-grab active:cursor-grabbing"}`}
+            className={`absolute inset-0 -outline-offset-2 print:hidden ${gestures.touch} ${gestures.hovered ? "cursor-pointer" : "cursor-grab active:cursor-grabbing"}`}
           />
           <p id={help} className="sr-only">
             Arrow keys turn the figure, plus and minus zoom, 0 resets. Atoms are picked by name in the field
             Atoms to measure.
           </p>
         </div>
-        <figcaption className="pointer-events-none absolute top-2 left-3 max-w-[calc(100%-9rem)] text-xs text-ink-2 lg:top-3">
+        <figcaption className="pointer-events-none absolute top-2 left-3 max-w-[calc(100%-8.5rem)] pointer-coarse:max-w-[calc(100%-10rem)] text-xs text-ink-2 lg:top-3">
           <b className="font-semibold text-ink">{caption.strong}</b> {caption.rest}
         </figcaption>
-        <div className="absolute top-1 right-1 flex lg:top-2 lg:right-2 print:hidden">
+        <div className="absolute top-1 right-1 flex lg:top-2 lg:right-2 pointer-coarse:-top-1 pointer-coarse:[&_button]:w-9 print:hidden">
           <IconButton label="Reset view" onClick={view.reset}>
             <RotateCcw aria-hidden="true" />
           </IconButton>
@@ -229,6 +228,20 @@ function useCanvas(): LazyCanvas {
     setFailed(true);
   }, []);
   return { Canvas: failed ? null : Canvas, element, failed, onReady: setElement, onFail };
+}
+
+/** Milliseconds after the last movement in which a picture that nobody sees is drawn again. */
+const QUIET_MS = 400;
+
+/** A value as it is, or, where it may lag, as it was when it last stood still. */
+function useQuiet<T>(value: T, lagging: boolean): T {
+  const [settled, setSettled] = useState(value);
+  useEffect(() => {
+    if (!lagging) return;
+    const timer = setTimeout(() => setSettled(value), QUIET_MS);
+    return () => clearTimeout(timer);
+  }, [value, lagging]);
+  return lagging ? settled : value;
 }
 
 /** The same array as long as its numbers are the same. */

@@ -45,8 +45,8 @@ const SHALLOW_INSET = { top: 30, bottom: 34, side: 10 } as const;
 const BARE_INSET = { top: 6, bottom: 6, side: 6 } as const;
 /** Å around the outermost atoms: half a stick, a ring, an atom number. */
 const PADDING = 0.5;
-/** Two atoms alone would otherwise fill the box. */
-const MOST_SCALE = 58;
+/** Share of the shorter side that one Å may take: two atoms alone would otherwise fill the box. */
+const MOST_SCALE = 0.15;
 
 /**
  * Rotation in which a view opens: the widest face of its anchor, over which everything is laid, so that the picture
@@ -94,7 +94,8 @@ export function stageOf(
     height: Math.max(1, height - inset.top - inset.bottom),
   };
   const across = box.high.map((high, i) => high - box.low[i]! + 2 * PADDING) as unknown as Vector;
-  const grid = bestGrid(scene.mode === "side" ? scene.strong.length : 1, area, across);
+  const most = MOST_SCALE * Math.min(width, height);
+  const grid = bestGrid(scene.mode === "side" ? scene.strong.length : 1, area, across, most);
   const middle: Vector = [
     (box.low[0] + box.high[0]) / 2,
     (box.low[1] + box.high[1]) / 2,
@@ -195,7 +196,12 @@ function extent(figures: readonly Figure[], shown: Int32Array, rotation: Quatern
 }
 
 /** The grid that lets figures of one size be drawn largest. */
-function bestGrid(count: number, area: Cell, across: Vector): { cells: Cell[]; scale: number } {
+function bestGrid(
+  count: number,
+  area: Cell,
+  across: Vector,
+  mostScale: number,
+): { cells: Cell[]; scale: number } {
   let best: { columns: number; rows: number; scale: number } | null = null;
   for (let columns = 1; columns <= Math.max(1, count); columns++) {
     const rows = Math.ceil(Math.max(1, count) / columns);
@@ -203,7 +209,7 @@ function bestGrid(count: number, area: Cell, across: Vector): { cells: Cell[]; s
     const scale = Math.min(
       area.width / columns / across[0],
       Math.max(1, area.height / rows - label) / across[1],
-      MOST_SCALE,
+      mostScale,
     );
     if (!best || scale > best.scale * 1.001) best = { columns, rows, scale };
   }
