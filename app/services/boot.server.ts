@@ -3,11 +3,13 @@ import { migrateDatabase } from "../db/migrate.server.ts";
 import { env } from "../env.server.ts";
 import { sweepEnded } from "./auth/sweep.server.ts";
 import { settleBackground } from "./background.server.ts";
+import { sweepUploads } from "./ensembles/sweep-uploads.server.ts";
 import { workerBundle, workerBundleExists } from "./jobs/pool.server.ts";
 import { startJobs } from "./jobs/run-jobs.server.ts";
 import { shutDownJobs } from "./jobs/shutdown.server.ts";
 import { log } from "./log.server.ts";
 import { startMail, stopMail } from "./mail/send-mail.server.ts";
+import { seedDemo, seedExample } from "./seed/seed-demo.server.ts";
 import { closeDemoAccounts, seedPeople } from "./teams/seed-people.server.ts";
 
 const SWEEP_EVERY_MS = 3_600_000;
@@ -21,17 +23,20 @@ async function seed(): Promise<Booted["demo"]> {
   const { public: open, DEMO_PASSWORD: password } = env();
   if (open) {
     await closeDemoAccounts();
+    await seedExample();
     return null;
   }
   if (password === undefined) return null;
   await seedPeople(password);
+  await seedDemo();
   return { email: "analyst@lowlying.example", password };
 }
 
 let sweeper: NodeJS.Timeout | undefined;
 
 function startSweeping(): void {
-  const sweep = () => sweepEnded().catch((error) => log.warn({ err: error }, "not swept"));
+  const sweep = () =>
+    Promise.all([sweepEnded(), sweepUploads()]).catch((error) => log.warn({ err: error }, "not swept"));
   sweeper = setInterval(sweep, SWEEP_EVERY_MS);
   sweeper.unref();
   sweep();

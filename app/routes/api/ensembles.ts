@@ -22,7 +22,7 @@ const answer = answerCall({
   async POST({ actor, request }) {
     const { teamId } = await accessTeam(actor, "take-in", teamOf(actor));
     const form = openForm({ body: request.body, contentType: request.headers.get("content-type") });
-    const { ensembleId, created } = await takeIn({ actor, teamId, form, interactive: false });
+    const { ensembleId, created } = await takeIn({ actor, form });
     return json(await describeEnsemble(teamId, ensembleId), {
       status: created ? 201 : 200,
       location: `/api/v1/ensembles/${ensembleId}`,

@@ -1,3 +1,4 @@
-export function loader() {
-  return new Response(null, { status: 404 });
-}
+import { exportCall } from "./export-call.server";
+
+export const loader = exportCall("xyz");
+export const action = loader;

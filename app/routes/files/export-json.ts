@@ -1,3 +1,2 @@
-export function loader() {
-  return new Response(null, { status: 404 });
-}
+// The same call as the API's, for whoever is signed in or looks at the example.
+export { action, loader } from "~/routes/api/export-json";

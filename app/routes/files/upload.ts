@@ -9,7 +9,7 @@ export const action = answerCall({
   async POST({ actor, request }) {
     if (actor.kind !== "user") throw notFound();
     const form = openForm({ body: request.body, contentType: request.headers.get("content-type") });
-    const { ensembleId, teamId, created } = await takeIn({ actor, teamId: null, form, interactive: true });
+    const { ensembleId, teamId, created } = await takeIn({ actor, form });
     return json(await describeEnsemble(teamId, ensembleId), { status: created ? 201 : 200 });
   },
 });

@@ -211,26 +211,27 @@ async function finish(all: Finish): Promise<TakenIn> {
  * A program names unit and level beside the files or is refused; a person (`interactive`) is asked afterwards. Whatever
  * goes wrong, the body is read to its end and nothing is left behind.
  *
- * @param options.teamId the team of a token; null takes it from the field `team`, which then comes before the files
+ * @param options.grantOf decides access once the first file comes; `team` is the field of that name, which a form from
+ *   the browser sends before its files
  */
-export async function takeIn(options: {
-  actor: Actor;
-  teamId: string | null;
+export async function takeInFor(options: {
+  grantOf(team: string | null): Promise<Grant>;
   form: FormReader;
   interactive: boolean;
 }): Promise<TakenIn> {
-  const fields = new Fields(options.teamId === null);
+  const { grantOf, form, interactive } = options;
+  const fields = new Fields(interactive);
   let upload: Upload | null = null;
   let grant: Grant | null = null;
   try {
-    for await (const part of options.form.parts()) {
+    for await (const part of form.parts()) {
       if (part.kind === "field") {
         fields.add(part.name, part.value);
         continue;
       }
       if (part.name !== "file")
         throw invalid(part.name, `There is no field "${part.name}". Files go into "file".`);
-      grant ??= await accessTeam(options.actor, "take-in", options.teamId ?? fields.get("team") ?? "");
+      grant ??= await grantOf(fields.get("team"));
       if (upload === null) {
         upload = new Upload(grant, fields.get("energyFrom"));
         await upload.begin();
@@ -240,13 +241,24 @@ export async function takeIn(options: {
     const checked = fields.check();
     if (upload === null || grant === null)
       throw invalid("file", 'No file came. Send it in the field "file".');
-    const taken = await finish({ upload, grant, fields: checked, interactive: options.interactive });
+    const taken = await finish({ upload, grant, fields: checked, interactive });
     if (!taken.created) await upload.discard();
     else await upload.store.discard();
     return taken;
   } catch (error) {
     await upload?.discard();
-    await options.form.drain();
+    await form.drain();
     throw error;
   }
+}
+
+/** Takes files in as a token, into its one team, or as a person, into the team that the form names. */
+export function takeIn(options: { actor: Actor; form: FormReader }): Promise<TakenIn> {
+  const { actor, form } = options;
+  const own = actor.kind === "token" ? actor.teamId : null;
+  return takeInFor({
+    grantOf: (team) => accessTeam(actor, "take-in", own ?? team ?? ""),
+    form,
+    interactive: own === null,
+  });
 }

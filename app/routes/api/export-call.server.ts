@@ -1,0 +1,40 @@
+import { exportQuerySchema } from "~/lib/api/schemas";
+import { attachment } from "~/services/attachment";
+import { accessSift } from "~/services/auth/access.server";
+import { type ExportFormat, exportSift } from "~/services/sifts/export-sift.server";
+import { answerCall, readQuery } from "./answer-call.server";
+
+const CHUNK_CHARACTERS = 65_536;
+
+/** Text in pieces, made as it is taken; many short pieces go out together. */
+function streamOf(pieces: Iterable<string>): ReadableStream<Uint8Array> {
+  const iterator = pieces[Symbol.iterator]();
+  const encoder = new TextEncoder();
+  return new ReadableStream({
+    pull(controller) {
+      let text = "";
+      let next = iterator.next();
+      while (!next.done) {
+        text += next.value;
+        if (text.length >= CHUNK_CHARACTERS) break;
+        next = iterator.next();
+      }
+      if (text !== "") controller.enqueue(encoder.encode(text));
+      if (next.done) controller.close();
+    },
+  });
+}
+
+/** The three exports differ in their format only. */
+export function exportCall(format: ExportFormat) {
+  return answerCall({
+    async GET({ actor, url, params }) {
+      const { siftId } = await accessSift(actor, "read", params.id ?? "");
+      const { temperature } = readQuery(url, exportQuerySchema);
+      const file = await exportSift({ actor, siftId, format, temperature });
+      return new Response(streamOf(file.pieces), {
+        headers: { "content-type": file.type, "content-disposition": attachment(file.name) },
+      });
+    },
+  });
+}
