@@ -68,8 +68,20 @@ async function compareByByte(connection: PoolConnection, found: Settings): Promi
   if (rows.length === 0) await connection.query("alter database character set utf8mb4 collate utf8mb4_bin");
 }
 
+/** A connection, or why there is none, without the address: a password stands in it. */
+async function connect(): Promise<PoolConnection> {
+  try {
+    return await pool().getConnection();
+  } catch (error) {
+    throw new DatabaseSettingsError(
+      `The database of DATABASE_URL cannot be used (${driverCode(error) ?? "no answer"}). Is it running, and are its address, name and password right?`,
+      { cause: error },
+    );
+  }
+}
+
 async function withLock<Result>(work: (connection: PoolConnection) => Promise<Result>): Promise<Result> {
-  const connection = await pool().getConnection();
+  const connection = await connect();
   try {
     const [rows] = await connection.query<RowDataPacket[]>(
       "select get_lock(concat(database(), '.migrate'), 60) as held",

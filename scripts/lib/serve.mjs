@@ -89,6 +89,8 @@ function sendBody(answer, response) {
     response.end();
     return Promise.resolve();
   }
+  // Without this the head waits for the first piece of the body, which a stream may send much later.
+  response.flushHeaders();
   return new Promise((resolve) => {
     // An error here means that the caller left or the source broke: the connection is cut, so that nobody takes half
     // an answer for a whole one.
@@ -188,6 +190,7 @@ export function makeServer({ application, handle, staticFolder, before }) {
 
   return {
     server,
+    openRequests: () => state.open,
     listen(port, host) {
       return new Promise((resolve, reject) => {
         server.once("error", reject);
