@@ -1,12 +1,11 @@
 import { Ellipsis } from "lucide-react";
-import { useEffect, useRef, useState } from "react";
+import { type RefObject, useEffect, useRef, useState } from "react";
 import { href, useFetcher } from "react-router";
 import { Button, IconButton, SubmitButton } from "~/components/ui/button";
 import { Dialog, DialogFoot } from "~/components/ui/dialog";
 import { TextField } from "~/components/ui/field";
 import { Menu, MenuItem, MenuRule } from "~/components/ui/menu";
 import { SelectField } from "~/components/ui/select-field";
-import { showToast } from "~/components/ui/toast";
 import type { EnsembleRow } from "~/lib/views";
 
 /** What the action of the series page answers. */
@@ -22,42 +21,47 @@ interface Props {
   row: EnsembleRow;
   team: string;
   series: readonly { id: string; name: string }[];
-  /** Owners delete. */
-  mayDelete: boolean;
+  /** Deletes; null for who may not. */
+  onDelete: ((row: EnsembleRow) => void) | null;
 }
 
 /** Rename, move, delete: the menu at the end of a row. */
-export function EnsembleActs({ row, team, series, mayDelete }: Props) {
-  const [open, setOpen] = useState<"rename" | "move" | null>(null);
-  const remove = useDeletion(team);
+export function EnsembleActs({ row, team, series, onDelete }: Props) {
+  const [open, setOpen] = useState(false);
+  const [what, setWhat] = useState<"rename" | "move">("rename");
+  const button = useRef<HTMLButtonElement>(null);
+  const ask = (act: "rename" | "move") => {
+    setWhat(act);
+    setOpen(true);
+  };
   return (
     <>
       <Menu
         label={`Acts on ${row.name}`}
         trigger={
-          <IconButton label={`Acts on ${row.name}`}>
+          <IconButton ref={button} label={`Acts on ${row.name}`}>
             <Ellipsis aria-hidden="true" />
           </IconButton>
         }
       >
-        <MenuItem onSelect={() => setOpen("rename")}>Rename…</MenuItem>
-        {series.length > 1 ? <MenuItem onSelect={() => setOpen("move")}>Move to a series…</MenuItem> : null}
-        {mayDelete ? (
+        <MenuItem onSelect={() => ask("rename")}>Rename…</MenuItem>
+        {series.length > 1 ? <MenuItem onSelect={() => ask("move")}>Move to a series…</MenuItem> : null}
+        {onDelete ? (
           <>
             <MenuRule />
-            <MenuItem tone="stop" onSelect={() => remove(row)}>
+            <MenuItem tone="stop" onSelect={() => onDelete(row)}>
               Delete ensemble
             </MenuItem>
           </>
         ) : null}
       </Menu>
       <ActDialog
-        key={open}
-        open={open !== null}
-        onClose={() => setOpen(null)}
+        open={open}
+        onClose={() => setOpen(false)}
+        returnTo={button}
         row={row}
         team={team}
-        what={open ?? "rename"}
+        what={what}
         series={series}
       />
     </>
@@ -67,89 +71,81 @@ export function EnsembleActs({ row, team, series, mayDelete }: Props) {
 function ActDialog({
   open,
   onClose,
-  row,
-  team,
-  what,
-  series,
-}: Omit<Props, "mayDelete"> & { open: boolean; onClose: () => void; what: "rename" | "move" }) {
-  const fetcher = useFetcher<ActAnswer>();
-  useEffect(() => {
-    if (fetcher.state === "idle" && fetcher.data?.ok) onClose();
-  }, [fetcher.state, fetcher.data, onClose]);
-  const label = what === "rename" ? "Rename ensemble" : "Move ensemble";
+  returnTo,
+  ...form
+}: Omit<Props, "onDelete"> & {
+  open: boolean;
+  onClose: () => void;
+  returnTo: RefObject<HTMLElement | null>;
+  what: "rename" | "move";
+}) {
   return (
-    <Dialog open={open} onOpenChange={(next) => !next && onClose()} title={label}>
-      <fetcher.Form method="post" action={`${href("/teams/:team", { team })}?index`} className="grid gap-4">
-        <input type="hidden" name="intent" value={what} />
-        <input type="hidden" name="ensemble" value={row.id} />
-        {what === "rename" ? (
-          <TextField
-            label="Name"
-            name="name"
-            defaultValue={row.name}
-            required
-            maxLength={200}
-            autoComplete="off"
-            error={fetcher.data?.message}
-          />
-        ) : (
-          <SelectField
-            label="Series"
-            name="series"
-            defaultValue={row.series.id}
-            choices={series.map(({ id, name }) => ({ value: id, label: name }))}
-            error={fetcher.data?.message}
-          />
-        )}
-        <DialogFoot note="The logbook keeps what it was before.">
-          <SubmitButton pending={fetcher.state !== "idle"} pendingLabel="Saving">
-            {label}
-          </SubmitButton>
-          <Button kind="quiet" onClick={onClose}>
-            Cancel
-          </Button>
-        </DialogFoot>
-      </fetcher.Form>
+    <Dialog
+      open={open}
+      onOpenChange={(next) => !next && onClose()}
+      title={actLabel(form.what)}
+      returnTo={returnTo}
+    >
+      <ActForm {...form} onClose={onClose} />
     </Dialog>
   );
 }
 
-/** Deletes at once and offers to take it back, as every act that takes something away. */
-function useDeletion(team: string) {
-  const removing = useFetcher<ActAnswer>();
-  const restoring = useFetcher<ActAnswer>();
-  const last = useRef<EnsembleRow | null>(null);
-  const told = useRef<ActAnswer | undefined>(undefined);
-  const action = `${href("/teams/:team", { team })}?index`;
+const actLabel = (what: "rename" | "move") => (what === "rename" ? "Rename ensemble" : "Move ensemble");
 
-  const { data } = removing;
-  const { submit: restore } = restoring;
+/** Lives as long as its dialog is open, so that no refusal of last time stands in it. */
+function ActForm({
+  row,
+  team,
+  series,
+  what,
+  onClose,
+}: Omit<Props, "onDelete"> & { what: "rename" | "move"; onClose: () => void }) {
+  const fetcher = useFetcher<ActAnswer>();
+  const { state, data } = fetcher;
+  useOnceDone(state === "idle" && data?.ok === true, onClose);
+  return (
+    <fetcher.Form method="post" action={`${href("/teams/:team", { team })}?index`} className="grid gap-4">
+      <input type="hidden" name="intent" value={what} />
+      <input type="hidden" name="ensemble" value={row.id} />
+      {what === "rename" ? (
+        <TextField
+          label="Name"
+          name="name"
+          defaultValue={row.name}
+          required
+          maxLength={200}
+          autoComplete="off"
+          error={data?.message}
+        />
+      ) : (
+        <SelectField
+          label="Series"
+          name="series"
+          defaultValue={row.series.id}
+          choices={series.map(({ id, name }) => ({ value: id, label: name }))}
+          error={data?.message}
+        />
+      )}
+      <DialogFoot note="The logbook keeps what it was before.">
+        <SubmitButton pending={state !== "idle"} pendingLabel="Saving">
+          {actLabel(what)}
+        </SubmitButton>
+        <Button kind="quiet" onClick={onClose}>
+          Cancel
+        </Button>
+      </DialogFoot>
+    </fetcher.Form>
+  );
+}
+
+/** Calls back when something has come true. */
+export function useOnceDone(done: boolean, act: () => void): void {
+  const latest = useRef(act);
   useEffect(() => {
-    const row = last.current;
-    if (!data || told.current === data || !row) return;
-    told.current = data;
-    if (data.ok) {
-      showToast({
-        tone: "done",
-        text: `${row.name} deleted.`,
-        action: {
-          label: "Undo",
-          act: () => restore({ intent: "restore", ensemble: row.id }, { method: "post", action }),
-        },
-      });
-    } else showToast({ tone: "failed", text: data.message ?? "Not deleted." });
-  }, [data, restore, action]);
-
-  const back = restoring.data;
+    latest.current = act;
+  });
   useEffect(() => {
-    if (!back) return;
-    const name = last.current?.name ?? "The ensemble";
-    if (back.ok) showToast({ tone: "done", text: `${name} is back.` });
-    else showToast({ tone: "failed", text: back.message ?? "Not restored." });
-  }, [back]);
-
-  return (row: EnsembleRow) => {
-    last.current = row;
-    removing.submit({ intent: "delete", ensemble: row.id }, { method: "post", action });
-  };
+    if (done) latest.current();
+  }, [done]);
 }

@@ -18,6 +18,7 @@ import { EnsembleTable } from "./ensemble-table";
 import { NewSeries } from "./new-series";
 import { SeriesFilters } from "./series-filters";
 import { TeamTabs } from "./team-tabs";
+import { useDeletion } from "./use-deletion";
 
 /** What the loader of the series page hands over. */
 export interface SeriesPageData {
@@ -45,6 +46,7 @@ export interface SeriesPageData {
 export function SeriesPage({ data }: { data: SeriesPageData }) {
   const { team, chosen, state, mayCompute } = data;
   const { uploads, several, setSeveral, take, send } = useIntake(data);
+  const remove = useDeletion(team.id);
   const over = usePageDrop(take, !mayCompute || several !== null);
   const where = `into ${chosen ? chosen.name : "the series Unsorted"}, as ${over === 1 ? "an ensemble" : "ensembles"}`;
   return (
@@ -72,7 +74,11 @@ export function SeriesPage({ data }: { data: SeriesPageData }) {
           onDismiss={uploads.dismiss}
         />
       </div>
-      {data.total === 0 ? <NoEnsembles data={data} onFiles={take} /> : <Ensembles data={data} />}
+      {data.total === 0 ? (
+        <NoEnsembles data={data} onFiles={take} />
+      ) : (
+        <Ensembles data={data} onDelete={data.role === "owner" ? remove : null} />
+      )}
       <div className="mt-6 flex flex-wrap items-end justify-between gap-6">
         {data.total > 0 ? <DepthKey className="w-full max-w-105" /> : null}
         {mayCompute && data.total > 0 ? (
@@ -120,7 +126,13 @@ function useIntake(data: SeriesPageData) {
   return { uploads, several, setSeveral, take, send };
 }
 
-function Ensembles({ data }: { data: SeriesPageData }) {
+function Ensembles({
+  data,
+  onDelete,
+}: {
+  data: SeriesPageData;
+  onDelete: ((row: EnsembleRow) => void) | null;
+}) {
   const { state } = data;
   const to = (page: number) => `?${writeSeriesState({ ...state, page })}`;
   const plain = `?${writeSeriesState({ ...state, q: "", level: null, state: null, held: null, page: 1 })}`;
@@ -139,12 +151,7 @@ function Ensembles({ data }: { data: SeriesPageData }) {
             acts={
               data.mayCompute
                 ? (row) => (
-                    <EnsembleActs
-                      row={row}
-                      team={data.team.id}
-                      series={data.series}
-                      mayDelete={data.role === "owner"}
-                    />
+                    <EnsembleActs row={row} team={data.team.id} series={data.series} onDelete={onDelete} />
                   )
                 : null
             }

@@ -1,6 +1,6 @@
 import { X } from "lucide-react";
 import { Dialog as Radix } from "radix-ui";
-import { type ReactNode, useRef } from "react";
+import { type ReactNode, type RefObject, useRef } from "react";
 import { IconButton } from "./button";
 
 /**
@@ -12,6 +12,7 @@ export function Dialog({
   open,
   onOpenChange,
   trigger,
+  returnTo,
   title,
   description,
   children,
@@ -19,6 +20,8 @@ export function Dialog({
   open?: boolean;
   onOpenChange?: (open: boolean) => void;
   trigger?: ReactNode;
+  /** Takes the focus afterwards, where what opened it is no trigger of its own: an entry of a menu. */
+  returnTo?: RefObject<HTMLElement | null>;
   title: ReactNode;
   description?: ReactNode;
   children: ReactNode;
@@ -40,6 +43,11 @@ export function Dialog({
             if (!field) return;
             event.preventDefault();
             field.focus();
+          }}
+          onCloseAutoFocus={(event) => {
+            if (!returnTo?.current) return;
+            event.preventDefault();
+            returnTo.current.focus();
           }}
           className="fixed inset-0 z-50 grid content-start gap-4 overflow-y-auto border-rule-2 bg-sheet p-4 text-sm text-ink shadow-float sm:inset-auto sm:top-1/2 sm:left-1/2 sm:max-h-[calc(100dvh-4rem)] sm:w-140 sm:max-w-[calc(100vw-2rem)] sm:-translate-x-1/2 sm:-translate-y-1/2 sm:rounded-md sm:border sm:p-6"
         >

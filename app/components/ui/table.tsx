@@ -26,12 +26,14 @@ const ALIGN = { left: "text-left", right: "text-right", center: "text-center" };
 
 /** Head of a column: 12 px, unit on its second line, the sorted one in ink with an arrow. */
 export function Th({ unit, align = "left", sort, onSort, sortTo, className = "", children }: HeadProps) {
-  const arrow = sort === "up" ? " ↑" : sort === "down" ? " ↓" : "";
+  // `aria-sort` says it to those who do not see the arrow.
+  const arrow =
+    sort === "up" || sort === "down" ? <span aria-hidden="true">{sort === "up" ? " ↑" : " ↓"}</span> : null;
   const sorted = sort === "up" || sort === "down";
   const words = (
     <>
       {children}
-      {unit === undefined && arrow}
+      {unit === undefined ? arrow : null}
       {unit === undefined ? null : (
         <span className="block font-normal">
           {unit}
