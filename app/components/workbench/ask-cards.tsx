@@ -101,6 +101,7 @@ function AskCard({
 function buttonWords(question: IntakeQuestion, chosen: Option | undefined): string {
   if (question.code === "level") return "Name the level";
   if (!chosen) return "Choose first";
+  if (chosen.id === "none") return "Take the structures without energies";
   return question.code === "energy-unit" ? `Confirm ${chosen.text}` : `Use ${chosen.text}`;
 }
 

@@ -1,12 +1,13 @@
 import { useVirtualizer } from "@tanstack/react-virtual";
 import { ChevronDown, ChevronRight, Copy, Download } from "lucide-react";
-import { type MouseEvent, useCallback, useId, useMemo, useRef, useState } from "react";
+import { type MouseEvent, memo, useCallback, useId, useMemo, useRef, useState } from "react";
 import { href } from "react-router";
 import { Button, buttonClass, IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { linkClass } from "~/components/ui/text-link";
 import { showToast } from "~/components/ui/toast";
+import { setHovered } from "~/hooks/use-hovered";
 import {
   ABSENT,
   fixed,
@@ -41,7 +42,7 @@ export interface MeasureColumn {
 
 /** The distinct set: energies, populations, copies, what was found, and how far each lies from the selected one. */
 export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
-  const { rows, sift, state, change, selected, select, column, reference, hover, level } = useWorkbench();
+  const { rows, sift, state, change, selected, select, column, reference, level } = useWorkbench();
   const [all, setAll] = useState(false);
   const id = useId();
   const rmsd = useMemo(
@@ -55,14 +56,15 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
   const order = useMemo(() => sorted.map((row) => row.frame), [sorted]);
   const widest = useMemo(() => rows.reduce((most, row) => Math.max(most, row.population ?? 0), 0), [rows]);
   const shown = all ? sorted.length : Math.min(FIRST_ROWS, sorted.length);
-  const rest = sorted.slice(shown);
+  const rest = useMemo(() => sorted.slice(shown), [sorted, shown]);
   const chosen = useMemo(() => new Set(selected), [selected]);
 
   const box = useRef<HTMLDivElement>(null);
+  const [rowPx] = useState(rowHeight);
   const virtual = useVirtualizer({
     count: shown,
     getScrollElement: () => box.current,
-    estimateSize: () => rowHeight(),
+    estimateSize: () => rowPx,
     overscan: 12,
     initialRect: { width: 900, height: FIRST_ROWS * ROW_PX },
     getItemKey: (index) => sorted[index]?.frame ?? index,
@@ -74,10 +76,13 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
     },
     [virtual],
   );
-  const onChoose = (index: number, how: "only" | "add" | "extend") => {
-    const row = sorted[index];
-    if (row) select(row.frame, how, order);
-  };
+  const onChoose = useCallback<ChooseRow>(
+    (index, how) => {
+      const frame = order[index];
+      if (frame !== undefined) select(frame, how, order);
+    },
+    [order, select],
+  );
   const { active, setActive, body, onKeyDown } = useRowFocus({ count: sorted.length, scrollTo, onChoose });
   const items = virtual.getVirtualItems();
   const before = items[0]?.start ?? 0;
@@ -170,9 +175,8 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
                   measure={measure}
                   selected={chosen.has(row.frame)}
                   tabbed={item.index === active}
-                  onFocus={() => setActive(item.index)}
+                  onFocus={setActive}
                   onChoose={onChoose}
-                  onHover={hover}
                 />
               ) : null;
             })}
@@ -193,6 +197,8 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
     </section>
   );
 }
+
+type ChooseRow = (index: number, how: "only" | "add" | "extend") => void;
 
 const NATURAL = { column: "energy", descending: false } as const;
 
@@ -256,7 +262,7 @@ function Spacer({ height }: { height: number }) {
   );
 }
 
-function ConformerLine({
+const ConformerLine = memo(function ConformerLine({
   row,
   index,
   widest,
@@ -267,7 +273,6 @@ function ConformerLine({
   tabbed,
   onFocus,
   onChoose,
-  onHover,
 }: {
   row: ConformerRow;
   index: number;
@@ -278,9 +283,8 @@ function ConformerLine({
   measure: MeasureColumn | null;
   selected: boolean;
   tabbed: boolean;
-  onFocus: () => void;
-  onChoose: (index: number, how: "only" | "add" | "extend") => void;
-  onHover: (frame: number | null) => void;
+  onFocus: (index: number) => void;
+  onChoose: ChooseRow;
 }) {
   const [open, setOpen] = useState(false);
   const click = (event: MouseEvent) => {
@@ -300,11 +304,11 @@ function ConformerLine({
         selected={selected}
         tabIndex={tabbed ? 0 : -1}
         className={`cursor-pointer select-none hover:bg-sunk ${row.outside ? "text-ink-2" : ""} ${selected ? "hover:bg-mark-wash" : ""}`}
-        onFocus={onFocus}
+        onFocus={() => onFocus(index)}
         onClick={click}
         onMouseDown={(event) => event.shiftKey && event.preventDefault()}
-        onPointerEnter={() => onHover(row.frame)}
-        onPointerLeave={() => onHover(null)}
+        onPointerEnter={() => setHovered(row.frame)}
+        onPointerLeave={() => setHovered(null)}
       >
         <Td>
           <span className="inline-flex items-center gap-1">
@@ -385,10 +389,16 @@ function ConformerLine({
       ) : null}
     </>
   );
-}
+});
 
 /** What is not shown, summed; all of it once everything is. */
-function SumRow({ rest, rows }: { rest: readonly ConformerRow[]; rows: readonly ConformerRow[] }) {
+const SumRow = memo(function SumRow({
+  rest,
+  rows,
+}: {
+  rest: readonly ConformerRow[];
+  rows: readonly ConformerRow[];
+}) {
   const over = rest.length > 0 ? rest : rows;
   const share = over.reduce((sum, row) => sum + (row.population ?? 0), 0);
   const energies = over.flatMap((row) => (row.relativeEnergy === null ? [] : [row.relativeEnergy]));
@@ -421,7 +431,7 @@ function SumRow({ rest, rows }: { rest: readonly ConformerRow[]; rows: readonly 
       <Td className={WIDE} colSpan={2} />
     </tr>
   );
-}
+});
 
 function tableText(
   rows: readonly ConformerRow[],

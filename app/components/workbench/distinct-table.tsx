@@ -6,6 +6,7 @@ import { IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { linkClass, TextButton } from "~/components/ui/text-link";
+import { setHovered } from "~/hooks/use-hovered";
 import { formatCount, formatEnergy, formatRmsd, plural } from "~/lib/format";
 import type { DroppedFrame } from "~/lib/recipe/result";
 import type { ConformerRow } from "~/lib/workbench/conformers";
@@ -20,7 +21,7 @@ const NO_REPEATS: DroppedFrame[] = [];
 
 /** Every kept conformer and, opened, the frames that repeat it: nothing was dropped without a reason. */
 export function DistinctTable({ tools }: { tools: ReactNode }) {
-  const { rows, result, selected, select, hover } = useWorkbench();
+  const { rows, result, selected, select } = useWorkbench();
   const id = useId();
   const [all, setAll] = useState(false);
   const [open, setOpen] = useState<ReadonlySet<number>>(new Set());
@@ -126,7 +127,6 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
                   onToggle={() => toggle(row.frame)}
                   onFocus={() => setActive(index)}
                   onChoose={onChoose}
-                  onHover={hover}
                 />
               ) : null;
             })}
@@ -172,7 +172,6 @@ function KeptRow({
   onToggle,
   onFocus,
   onChoose,
-  onHover,
 }: {
   row: ConformerRow;
   index: number;
@@ -184,7 +183,6 @@ function KeptRow({
   onToggle: () => void;
   onFocus: () => void;
   onChoose: (index: number, how: "only" | "add" | "extend") => void;
-  onHover: (frame: number | null) => void;
 }) {
   const click = (event: MouseEvent) => {
     if ((event.target as HTMLElement).closest("button")) return;
@@ -201,8 +199,8 @@ function KeptRow({
         onFocus={onFocus}
         onClick={click}
         onMouseDown={(event) => event.shiftKey && event.preventDefault()}
-        onPointerEnter={() => onHover(row.frame)}
-        onPointerLeave={() => onHover(null)}
+        onPointerEnter={() => setHovered(row.frame)}
+        onPointerLeave={() => setHovered(null)}
       >
         <Td>
           <span className="inline-flex items-center gap-1">

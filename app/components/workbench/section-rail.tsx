@@ -57,7 +57,9 @@ export function SectionRail({
                       : `text-ink-2 ${NODES[station.state]}`
                   }`}
                 >
-                  <span className={`block ${current ? "font-semibold" : "font-medium"}`}>{station.name}</span>
+                  <span className={`block whitespace-nowrap ${current ? "font-semibold" : "font-medium"}`}>
+                    {station.name}
+                  </span>
                   <span className="figures block text-xs whitespace-nowrap text-ink-3">{station.figure}</span>
                 </Link>
               </li>

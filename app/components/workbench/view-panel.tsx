@@ -1,10 +1,12 @@
-import { useDeferredValue, useMemo } from "react";
+import { useMemo } from "react";
 import { Button } from "~/components/ui/button";
 import { Note } from "~/components/ui/note";
 import { TextButton } from "~/components/ui/text-link";
 import { PicksList } from "~/components/viewer/picks-list";
 import { Viewer, type ViewerProps } from "~/components/viewer/viewer";
 import { useCoordinates } from "~/hooks/use-coordinates";
+import { useHovered } from "~/hooks/use-hovered";
+import { useSettled } from "~/hooks/use-settled";
 import { perceiveBonds } from "~/lib/chem/bonds";
 import { formatCount, plural } from "~/lib/format";
 import { formatMeasure, measureKind, measureLabel, measureValue } from "~/lib/measure/measure";
@@ -15,17 +17,21 @@ import { frameSentence } from "~/lib/workbench/findings";
 import { frameName, MAX_COLOURED, type ShownFrame, viewPlan } from "~/lib/workbench/view-plan";
 import { useWorkbench } from "./workbench-context";
 
+const REST_MS = 150;
 /** More names than this make a caption longer than the picture is wide. */
 const NAMED_ATOMS = 4;
 
 /** The 3D view beside every section, with what is selected below it. */
 export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
   const workbench = useWorkbench();
-  const { ensemble, rows, roles, selected, state, change, sift, coordinates, hovered } = workbench;
+  const { ensemble, rows, roles, selected, state, change, sift, coordinates } = workbench;
   // Frames that are not kept are asked for by themselves, so that a wrong number in the address blocks nothing else.
   const own = useCoordinates(ensemble.id, ensemble.atoms, selected);
-  const lit = useDeferredValue(hovered);
-  const shownRows = useDeferredValue(rows);
+  // A row that only passes beneath the pointer, as in scrolling, lights nothing.
+  const lit = useSettled(useHovered(), REST_MS);
+  // Hundreds of molecules are not tinted anew at every step of the slider, but when it rests.
+  const settled = useSettled(rows, REST_MS);
+  const shownRows = rows.length === settled.length && rows[0]?.frame === settled[0]?.frame ? settled : rows;
   const alignedOn =
     state.align === null
       ? "aligned on heavy atoms"

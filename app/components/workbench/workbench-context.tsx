@@ -54,9 +54,6 @@ export interface Workbench {
   /** Row that the RMSD column is taken to. */
   reference: ConformerRow | null;
   nearPairs: NearPair[] | null;
-  /** Row hovered in a table or chart, lit in the view. */
-  hovered: number | null;
-  hover: (frame: number | null) => void;
 }
 
 const Context = createContext<Workbench | null>(null);
@@ -86,7 +83,6 @@ export function WorkbenchProvider({
 }) {
   const [state, change] = useAddressState();
   const [sliding, setSliding] = useState<number | null>(null);
-  const [hovered, setHovered] = useState<number | null>(null);
   const temperatureK = sliding ?? state.temperatureK;
   const result = sift?.result ?? null;
   const level = ensemble.levels.find((one) => one.id === sift?.recipe.level) ?? null;
@@ -140,8 +136,6 @@ export function WorkbenchProvider({
       column,
       reference,
       nearPairs,
-      hovered,
-      hover: setHovered,
     }),
     [
       ensemble,
@@ -162,7 +156,6 @@ export function WorkbenchProvider({
       column,
       reference,
       nearPairs,
-      hovered,
     ],
   );
   return <Context value={value}>{children}</Context>;
