@@ -1,7 +1,7 @@
 import { exportQuerySchema } from "~/lib/api/schemas";
 import { attachment } from "~/services/attachment";
 import { accessSift } from "~/services/auth/access.server";
-import { type ExportFormat, exportSift } from "~/services/sifts/export-sift.server";
+import type { ExportFormat, exportSift } from "~/services/sifts/export-sift.server";
 import { answerCall, readQuery } from "./answer-call.server";
 
 const CHUNK_CHARACTERS = 65_536;
@@ -26,12 +26,12 @@ function streamOf(pieces: Iterable<string>): ReadableStream<Uint8Array> {
 }
 
 /** The three exports differ in their format only. */
-export function exportCall(format: ExportFormat) {
+export function exportCall(make: typeof exportSift, format: ExportFormat) {
   return answerCall({
     async GET({ actor, url, params }) {
       const { siftId } = await accessSift(actor, "read", params.id ?? "");
       const { temperature } = readQuery(url, exportQuerySchema);
-      const file = await exportSift({ actor, siftId, format, temperature });
+      const file = await make({ actor, siftId, format, temperature });
       return new Response(streamOf(file.pieces), {
         headers: { "content-type": file.type, "content-disposition": attachment(file.name) },
       });

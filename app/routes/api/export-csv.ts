@@ -1,4 +1,5 @@
+import { exportSift } from "~/services/sifts/export-sift.server";
 import { exportCall } from "./export-call.server";
 
-export const loader = exportCall("csv");
+export const loader = exportCall(exportSift, "csv");
 export const action = loader;

@@ -1,4 +1,5 @@
+import { exportSift } from "~/services/sifts/export-sift.server";
 import { exportCall } from "./export-call.server";
 
-export const loader = exportCall("json");
+export const loader = exportCall(exportSift, "json");
 export const action = loader;

@@ -1,4 +1,5 @@
+import { exportSift } from "~/services/sifts/export-sift.server";
 import { exportCall } from "./export-call.server";
 
-export const loader = exportCall("xyz");
+export const loader = exportCall(exportSift, "xyz");
 export const action = loader;
