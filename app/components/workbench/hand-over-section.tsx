@@ -23,21 +23,15 @@ import {
 import type { SiftRecipe } from "~/lib/recipe/recipe";
 import { CONSTANTS_YEAR } from "~/lib/units";
 import { ATOM_SET_WORDS, methodsText } from "~/lib/workbench/recipe-words";
+import type { ExportFacts } from "~/services/sifts/describe-exports.server";
 import { OutdatedNote, SectionState } from "./section-state";
 import { useWorkbench } from "./workbench-context";
 
 type Format = "csv" | "xyz" | "json";
 
-/** Bytes and checksum of a file as it would be sent now; null where the set is too large to write it for that. */
-export interface ExportFacts {
-  format: Format;
-  bytes: number;
-  sha256: string;
-}
-
 /** The distinct set as files for the spreadsheet, the next program and a script, and how it was made. */
 export function HandOverSection({ files }: { files: readonly ExportFacts[] | null }) {
-  const { ensemble, sift, result, populations, temperatureK, level } = useWorkbench();
+  const { ensemble, sift, result, populations, temperatureK, level, state } = useWorkbench();
   if (sift === null || result === null) {
     return (
       <section aria-labelledby="section-title">
@@ -61,7 +55,7 @@ export function HandOverSection({ files }: { files: readonly ExportFacts[] | nul
       <Finding
         more={
           energies
-            ? `Populations in the files are those at ${withUnit(formatTemperature(temperatureK), "K")}; numbers stand with every digit.`
+            ? `Populations in the files are those at ${withUnit(formatTemperature(temperatureK), "K")}${state.weights === "auto" ? "" : ", with the weights that “auto” chooses"}; numbers stand with every digit.`
             : "Without energies the files carry no populations; numbers stand with every digit."
         }
       >

@@ -130,6 +130,28 @@ function csvColumns(all: ColumnRow[], frameCount: number, set: ExportSet): CsvCo
 }
 
 /**
+ * The distinct set as a file of one format; access has been decided before, and nothing is written down.
+ *
+ * @throws DomainError conflict while the sift is not done
+ */
+export async function openExport(
+  grant: Grant & { ensembleId: string },
+  sift: FoundSift,
+  format: ExportFormat,
+  temperature = STANDARD_TEMPERATURE_K,
+): Promise<ExportFile> {
+  const found = await collect(grant, sift, temperature);
+  const { set, ensemble, indices } = found;
+  const pieces =
+    format === "xyz"
+      ? await xyzPieces(set, ensemble, indices)
+      : format === "csv"
+        ? writeCsv(set, csvColumns(found.columns, ensemble.frames, set))
+        : writeJson(set);
+  return { name: `${ensemble.name} distinct set.${format}`, type: TYPES[format], pieces };
+}
+
+/**
  * The distinct set of a sift as a file; members' exports stand in the logbook.
  *
  * @param options.temperature K, for the populations that go along
@@ -143,23 +165,12 @@ export async function exportSift(options: {
 }): Promise<ExportFile> {
   const grant = await accessSift(options.actor, "read", options.siftId);
   const sift = await findSift(grant.siftId);
-  const found = await collect(grant, sift, options.temperature ?? STANDARD_TEMPERATURE_K);
-  const { set, ensemble, indices } = found;
-  const pieces =
-    options.format === "xyz"
-      ? await xyzPieces(set, ensemble, indices)
-      : options.format === "csv"
-        ? writeCsv(set, csvColumns(found.columns, ensemble.frames, set))
-        : writeJson(set);
+  const file = await openExport(grant, sift, options.format, options.temperature);
   if (grant.role !== "guest") {
     await writeEntry(db, grant, grant, {
       type: "export",
       data: { siftId: grant.siftId, format: options.format },
     });
   }
-  return {
-    name: `${ensemble.name} distinct set.${options.format}`,
-    type: TYPES[options.format],
-    pieces,
-  };
+  return file;
 }
