@@ -175,7 +175,7 @@ function StripCell({ row }: { row: EnsembleRow }) {
       return quiet("not sifted yet");
     case "ready":
       if (!row.sift || row.sift.shares.length === 0) return quiet("no energies, no populations");
-      return <DepthStrip shares={row.sift.shares} />;
+      return <DepthStrip shares={row.sift.shares} conformers={row.sift.distinct ?? undefined} />;
   }
 }
 

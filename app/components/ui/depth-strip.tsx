@@ -28,28 +28,30 @@ const GAP_FROM = 0.012;
 interface Segment {
   x: number;
   share: number;
+  /** Population that decides the tint: that of one conformer, the mean one where the segment stands for several. */
+  each: number;
 }
 
-function segments(shares: readonly number[]): Segment[] {
+function segments(shares: readonly number[], conformers = shares.length): Segment[] {
+  const together = conformers - shares.length + 1;
   let x = 0;
-  return shares.map((share) => {
-    const segment = { x, share };
+  return shares.map((share, i) => {
+    const segment = { x, share, each: i === shares.length - 1 ? share / together : share };
     x += share;
     return segment;
   });
 }
 
-function Bars({ shares, height }: { shares: readonly number[]; height: number }) {
-  const all = segments(shares);
+function Bars({ all, height }: { all: readonly Segment[]; height: number }) {
   return (
     <>
-      {all.map(({ x, share }, i) => (
+      {all.map(({ x, share, each }, i) => (
         <rect
           key={i}
           x={`${x * 100}%`}
           width={`${share * 100}%`}
           height={height}
-          className={depthFill(share)}
+          className={depthFill(each)}
         />
       ))}
       {all.map(({ x, share }, i) =>
@@ -69,26 +71,29 @@ function Bars({ shares, height }: { shares: readonly number[]; height: number })
 }
 
 /** What a strip shows, in words. */
-export function stripWords(shares: readonly number[]): string {
+export function stripWords(shares: readonly number[], conformers = shares.length): string {
   const first = shares.slice(0, 3).map((share) => formatPercent(share, 1));
-  const rest = shares.length - first.length;
+  const rest = conformers - first.length;
   return `Populations, largest first: ${first.join(", ")}${rest > 0 ? `, and ${rest} more` : ""}`;
 }
 
 /** An ensemble's populations as one bar, largest left. The figure stands beside it. */
 export function DepthStrip({
   shares,
+  conformers = shares.length,
   height = 12,
-  label = stripWords(shares),
+  label = stripWords(shares, conformers),
 }: {
   /** Fractions in falling order. */
   shares: readonly number[];
+  /** How many there are in all: where more, the last share is that of all the others together. */
+  conformers?: number;
   height?: number;
   label?: string;
 }) {
   return (
     <svg role="img" aria-label={label} width="100%" height={height} className="block">
-      <Bars shares={shares} height={height} />
+      <Bars all={segments(shares, conformers)} height={height} />
     </svg>
   );
 }
@@ -126,7 +131,7 @@ export function LabelledDepthStrip({
   return (
     <div ref={ref}>
       <svg role="img" aria-label={stripWords(shares)} width="100%" height={height + 20} className="block">
-        <Bars shares={shares} height={height} />
+        <Bars all={all} height={height} />
         {all.slice(0, shown).map(({ x, share }, i) => (
           <text key={i} x={`${x * 100}%`} y={height + 16} className="fill-ink text-xs font-semibold">
             {names[i]}

@@ -18,6 +18,7 @@ import { createSeries, seriesNameSchema } from "~/services/ensembles/create-seri
 import { deleteEnsemble } from "~/services/ensembles/delete-ensemble.server";
 import { listEnsembles } from "~/services/ensembles/list-ensembles.server";
 import { listSeries } from "~/services/ensembles/list-series.server";
+import { loadExample } from "~/services/ensembles/load-example.server";
 import {
   ensembleNameSchema,
   moveEnsemble,
@@ -66,7 +67,8 @@ export async function loader({ params, context, url }: Route.LoaderArgs): Promis
       legend: levelLegend(all),
       state: { ...state, page },
       now: new Date().toISOString(),
-      example: null,
+      // Where a team has nothing of its own yet, a finished one shows what becomes of files.
+      example: all.length === 0 ? ((await loadExample({ actor }))?.ensemble.id ?? null) : null,
       limits: `${formatBytes(env().MAX_FILE_BYTES)} each`,
     };
   });
