@@ -241,9 +241,50 @@ export function distancesExceed(
   tolerance: number,
 ): boolean {
   const n = plan.n;
-  const limit = n * tolerance * tolerance * (1 + 1e-9) + 1e-18;
-  const i = xo + 3 * n + 1;
-  const j = yo + 3 * n + 1;
+  return differ(x, xo + 3 * n + 1, y, yo + 3 * n + 1, n, squareLimit(n, tolerance));
+}
+
+/** Numbers of a profile: the norm of a shape and its sorted distances, packed for long runs of comparisons. */
+export function profileLength(plan: SymmetryPlan): number {
+  return plan.n + 1;
+}
+
+/** Copies the profile of a shape to `profile` at `to`. */
+export function writeProfile(
+  plan: SymmetryPlan,
+  shape: Float64Array,
+  at: number,
+  profile: Float64Array,
+  to: number,
+): void {
+  const n = plan.n;
+  profile[to] = Math.sqrt(shape[at + 3 * n]!);
+  for (let k = 1; k <= n; k++) profile[to + k] = shape[at + 3 * n + k]!;
+}
+
+/**
+ * `distancesExceed` on profiles, after the cheaper bound sqrt(n) RMSD >= | |x| - |y| |.
+ *
+ * @param limit from `squareLimit`
+ */
+export function profilesExceed(
+  n: number,
+  x: Float64Array,
+  xo: number,
+  y: Float64Array,
+  yo: number,
+  limit: number,
+): boolean {
+  const d = x[xo]! - y[yo]!;
+  return d * d > limit || differ(x, xo + 1, y, yo + 1, n, limit);
+}
+
+/** n tolerance^2, raised so that rounding never rejects a pair that lies within. */
+export function squareLimit(n: number, tolerance: number): number {
+  return n * tolerance * tolerance * (1 + 1e-9) + 1e-18;
+}
+
+function differ(x: Float64Array, i: number, y: Float64Array, j: number, n: number, limit: number): boolean {
   let sum = 0;
   for (let k = 0; k < n; k++) {
     const d = x[i + k]! - y[j + k]!;

@@ -1,4 +1,11 @@
-import { type SymmetryPlan, writeShape } from "../align/plan.ts";
+import {
+  profileLength,
+  profilesExceed,
+  type SymmetryPlan,
+  squareLimit,
+  writeProfile,
+  writeShape,
+} from "../align/plan.ts";
 import { SymmetricRmsd } from "../align/symmetric-rmsd.ts";
 import { SymmetryNumber } from "../align/symmetry-number.ts";
 import type { FrameBlock } from "../structure.ts";
@@ -73,7 +80,10 @@ class LeaderWalk {
   private readonly comparer: SymmetricRmsd;
   private readonly symmetry: SymmetryNumber;
   private readonly store: ShapeStore;
+  /** Profiles of the leaders, apart from their shapes: most pairs need no more, and these stay in the cache. */
+  private readonly profiles: ShapeStore;
   private readonly shape: Float64Array;
+  private readonly profile: Float64Array;
   private readonly wholeShape: Float64Array;
   private readonly result: Leaders = { leaders: [], followers: [], pairs: 0 };
   /** First leader still within the energy tolerance: rises along the walk. */
@@ -91,7 +101,9 @@ class LeaderWalk {
     this.comparer = new SymmetricRmsd(plan);
     this.symmetry = new SymmetryNumber(whole);
     this.store = new ShapeStore(plan.shapeLength);
+    this.profiles = new ShapeStore(profileLength(plan));
     this.shape = new Float64Array(plan.shapeLength);
+    this.profile = new Float64Array(profileLength(plan));
     this.wholeShape = new Float64Array(whole.shapeLength);
   }
 
@@ -110,16 +122,19 @@ class LeaderWalk {
   }
 
   private take(step: number): void {
-    const { block, comparer, store, rule } = this;
+    const { block, comparer, store, profiles, rule } = this;
+    const { plan } = comparer;
     const row = this.walk.rows[step]!;
-    writeShape(comparer.plan, block.positions, row * 3 * block.atoms, this.shape, 0);
+    writeShape(plan, block.positions, row * 3 * block.atoms, this.shape, 0);
+    writeProfile(plan, this.shape, 0, this.profile, 0);
     this.passLeaders(row);
     if (comparer.nodes > GENEROUS_NODES) comparer.nodeLimit = FRUGAL_NODE_LIMIT;
-    const leaders = this.result.leaders;
+    const limit = squareLimit(plan.n, rule.rmsdTolerance);
+    const { leaders, followers } = this.result;
     let exact = true;
     for (let k = this.first; k < leaders.length; k++) {
-      this.result.pairs += 1;
-      if (this.result.pairs % PAIRS_A_LOOK === 0 && this.hooks.cancelled?.()) throw new SiftCancelled();
+      this.countPair();
+      if (profilesExceed(plan.n, this.profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit)) continue;
       const match = comparer.decide(
         this.shape,
         0,
@@ -130,13 +145,18 @@ class LeaderWalk {
       );
       if (match) {
         const { rmsd, mirror } = match;
-        this.result.followers.push({ row, step, leader: k, rmsd, mirror, exact: exact && match.exact });
+        followers.push({ row, step, leader: k, rmsd, mirror, exact: exact && match.exact });
         leaders[k]!.found += 1;
         return;
       }
       if (comparer.lastWasCut) exact = false;
     }
-    this.lead(row, step, exact);
+    this.lead(row, step, exact && plan.chain.complete);
+  }
+
+  private countPair(): void {
+    this.result.pairs += 1;
+    if (this.result.pairs % PAIRS_A_LOOK === 0 && this.hooks.cancelled?.()) throw new SiftCancelled();
   }
 
   /** Moves `first` past the leaders that lie too far below in energy; energies rise, so it never moves back. */
@@ -152,11 +172,13 @@ class LeaderWalk {
       this.first += 1;
     }
     this.store.release(this.first);
+    this.profiles.release(this.first);
   }
 
   private lead(row: number, step: number, exact: boolean): void {
     const { block, symmetry } = this;
     this.store.push(this.shape);
+    this.profiles.push(this.profile);
     const toMirror = this.comparer.toOwnMirror(this.shape, 0);
     if (symmetry.nodes > GENEROUS_SYMMETRY_NODES) symmetry.nodeLimit = FRUGAL_NODE_LIMIT;
     writeShape(symmetry.plan, block.positions, row * 3 * block.atoms, this.wholeShape, 0);
