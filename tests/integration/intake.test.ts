@@ -5,6 +5,7 @@ import { beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { ensembles, frames, logbook, sources } from "~/db/schema.server";
 import { readSource } from "~/services/ensembles/source-writer.server";
+import { withEnv } from "../factories/environment";
 import { makeMember, makeTeam, tokenOf } from "../factories/people";
 import { storedRows } from "../factories/stored";
 import { BUTANE, formOf, frame, makeLab, post, reference, takenIn, upload } from "../factories/upload";
@@ -105,6 +106,13 @@ describe("POST /ensembles", () => {
     const chunks: Uint8Array[] = [];
     for await (const chunk of readSource(source?.id ?? "")) chunks.push(chunk);
     expect(Buffer.concat(chunks).equals(packed)).toBe(true);
+  });
+
+  it("takes a file that is just within the limits", async () => {
+    const content = butane("limit");
+    withEnv({ MAX_FILE_BYTES: content.length, MAX_FRAMES: 3, MAX_ATOMS: 14 });
+    const taken = await takenIn(token, [{ name: "limit.xyz", content }], fields);
+    expect(taken.intake.accepted).toBe(3);
   });
 
   it("takes structures without energies and without a level", async () => {
