@@ -77,7 +77,7 @@ export function viewMarks(input: MarkInput): Mark[] {
   });
   if (input.hovered && !input.picked.includes(input.hovered.atom))
     marks.push(...hoverMarks(input, input.hovered));
-  if (input.bar !== false) marks.push(...scaleBar(stage, camera));
+  if (input.bar !== false && scene.strong.length > 0) marks.push(...scaleBar(stage, camera));
   return marks;
 }
 
@@ -86,7 +86,7 @@ const BAR_LENGTHS = [5, 2, 1, 0.5, 10, 20, 50] as const;
 /** A bar in five fields, as on a chart: 5 Å where that fits, else the next round length. */
 export function scaleBar(stage: Stage, camera: Camera): Mark[] {
   const scale = stage.scale * camera.zoom;
-  const length = BAR_LENGTHS.find((l) => l * scale >= 50 && l * scale <= 0.62 * stage.width) ?? 5;
+  const length = BAR_LENGTHS.find((l) => l * scale >= 50 && l * scale <= 0.8 * stage.width) ?? 5;
   const field = (length * scale) / 5;
   const [x, y] = [stage.cells[0]!.x, stage.height - 14];
   const fields = Array.from(

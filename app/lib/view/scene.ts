@@ -113,7 +113,7 @@ export function buildScene(
   const ranked = [...indices(conformers)].sort(
     (a, b) => rank(conformers[b]!) - rank(conformers[a]!) || a - b,
   );
-  const chosen = selected.length > 0 ? selected : ranked.slice(0, mode === "side" ? MOST_STRONG : 1);
+  const chosen = chosenOf(selected, ranked, mode);
   const strongIndices = chosen.slice(0, mode === "one" ? 1 : MOST_STRONG);
   const faintIndices = mode === "overlay" ? ranked.filter((k) => !strongIndices.includes(k)).reverse() : [];
 
@@ -228,6 +228,14 @@ function partners(pairs: readonly number[], atom: number): number[] {
     if (pairs[k + 1] === atom) found.push(pairs[k]!);
   }
   return found;
+}
+
+/** The selected ones; side by side with nothing to stand beside, the most populated fill up. */
+function chosenOf(selected: readonly number[], ranked: readonly number[], mode: ViewMode): readonly number[] {
+  if (mode === "side" && selected.length < 2) {
+    return [...selected, ...ranked.filter((k) => !selected.includes(k))].slice(0, MOST_STRONG);
+  }
+  return selected.length > 0 ? selected : ranked.slice(0, 1);
 }
 
 function indices(list: readonly unknown[]): number[] {
