@@ -87,6 +87,13 @@ export function EnergyAgainstRmsd({
 function PointsLayer({ drawn, selected }: { drawn: readonly Point[]; selected: ReadonlySet<number> }) {
   const plot = usePlot();
   if (!plot) return null;
+  // The most populated are named, but none on top of another's name.
+  const labels: { name: string; x: number; y: number }[] = [];
+  for (const { row, rmsd, energy } of drawn.slice(-NAMED).reverse()) {
+    const at = { name: row.name, x: plot.x(rmsd), y: plot.y(energy) };
+    if (labels.every((label) => Math.abs(label.x - at.x) > 26 || Math.abs(label.y - at.y) > 14))
+      labels.push(at);
+  }
   const radius = drawn.length > 300 ? 3 : 4.5;
   return (
     <g>
@@ -101,9 +108,9 @@ function PointsLayer({ drawn, selected }: { drawn: readonly Point[]; selected: R
           strokeWidth={selected.has(row.frame) ? 2.5 : 1}
         />
       ))}
-      {drawn.slice(-NAMED).map(({ row, rmsd, energy }) => (
-        <ChartText key={row.index} x={plot.x(rmsd) + 8} y={plot.y(energy) - 6} tone="ink" halo>
-          {row.name}
+      {labels.map(({ name, x, y }) => (
+        <ChartText key={name} x={x + 8} y={y - 6} tone="ink" halo>
+          {name}
         </ChartText>
       ))}
     </g>

@@ -24,7 +24,7 @@ export function SelectField({
   const { id, describedBy } = useFieldIds(givenId, { help, error });
   return (
     <Field {...{ id, label, aside, help, error, hideLabel, className }}>
-      <span className={`relative ${frameClass(Boolean(error))} px-0`}>
+      <span className={`relative ${frameClass(Boolean(error))} px-0!`}>
         {mark ? <span className="pointer-events-none absolute left-3 flex">{mark}</span> : null}
         <select
           id={id}

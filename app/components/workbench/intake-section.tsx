@@ -55,7 +55,7 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
       {ensemble.chiralityNote ? (
         <Note className="mt-9">
           The molecule counts as{" "}
-          {ensemble.chirality === "unsure" ? "chiral, though that is unsure" : ensemble.chirality}:{" "}
+          {ensemble.chirality === "unsure" ? "chiral, though that is unsure" : ensemble.chirality}.{" "}
           {ensemble.chiralityNote}
         </Note>
       ) : null}

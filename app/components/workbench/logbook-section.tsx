@@ -2,7 +2,7 @@ import { KeyRound } from "lucide-react";
 import { href, Link, useLocation } from "react-router";
 import { buttonClass } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
-import { formatDate, formatTime, plural } from "~/lib/format";
+import { formatDate, formatTime, plural, pluralWord } from "~/lib/format";
 import type { LogbookRow } from "~/lib/views";
 import { useWorkbench } from "./workbench-context";
 
@@ -15,8 +15,8 @@ export function LogbookSection({ rows, older }: { rows: readonly LogbookRow[]; o
   const people = new Set(rows.filter((row) => row.by === "person").map((row) => row.who)).size;
   const tokens = new Set(rows.filter((row) => row.by === "token").map((row) => row.who)).size;
   const by = [
-    people > 0 ? plural(people, "person", "people") : null,
-    tokens > 0 ? plural(tokens, "token") : null,
+    people > 0 ? pluralWord(people, "person", "people") : null,
+    tokens > 0 ? pluralWord(tokens, "token") : null,
   ].filter((part) => part !== null);
   return (
     <section aria-labelledby="section-title">
@@ -85,7 +85,7 @@ function Entry({ entry }: { entry: LogbookRow }) {
       <time dateTime={entry.at} className="text-ink-3">
         {formatTime(entry.at)}
       </time>
-      <span className="flex min-w-0 items-center gap-3 text-ink-2 sm:max-xl:col-start-2 sm:max-xl:row-start-2">
+      <span className="-my-0.5 flex min-w-0 items-center gap-3 self-start text-ink-2 sm:max-xl:col-start-2 sm:max-xl:row-start-2">
         <span
           aria-hidden="true"
           className="grid size-6 shrink-0 place-items-center rounded-full border border-edge text-xs text-ink-2"

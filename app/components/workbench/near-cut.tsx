@@ -4,7 +4,7 @@ import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { countKept } from "~/hooks/use-sift";
-import { fixed, formatCount, formatEnergy, formatRmsd, withUnit } from "~/lib/format";
+import { capital, countWord, fixed, formatCount, formatEnergy, formatRmsd, withUnit } from "~/lib/format";
 import type { SiftRecipe } from "~/lib/recipe/recipe";
 import { farthestMerged } from "~/lib/workbench/findings";
 import { requestOf } from "~/lib/workbench/recipe-words";
@@ -12,10 +12,11 @@ import { MAX_PAIRED, useWorkbench } from "./workbench-context";
 
 /** The kept conformers that lie nearest to each other, and the farthest frame that was merged: where a tolerance would cut. */
 export function NearestPairs() {
-  const { nearPairs, rows, result, show } = useWorkbench();
+  const { nearPairs, rows, result, show, sift } = useWorkbench();
   if (result === null || rows.length < 2) return null;
   const merged = farthestMerged(result);
   const nearest = nearPairs?.[0];
+  const byEnergy = nearPairs?.filter((pair) => pair.rmsd <= (sift?.recipe.rmsdTolerance ?? 0)).length ?? 0;
   const apart = (a: number, b: number) => {
     const x = rows[a]?.relativeEnergy;
     const y = rows[b]?.relativeEnergy;
@@ -68,7 +69,10 @@ export function NearestPairs() {
         All kept apart.{" "}
         {merged === null
           ? "Nothing was merged."
-          : `The farthest merged frame lies at ${withUnit(formatRmsd(merged.rmsd), "Å")} (frame ${merged.frame} with frame ${merged.repeats}).`}
+          : `The farthest merged frame lies ${merged.rmsd < 0.001 ? "" : "at "}${withUnit(formatRmsd(merged.rmsd), "Å")} (frame ${merged.frame} with frame ${merged.repeats}).`}
+        {byEnergy > 0
+          ? ` ${byEnergy === 1 ? "One pair above lies" : `${capital(countWord(byEnergy))} pairs above lie`} within the RMSD tolerance and ${byEnergy === 1 ? "is" : "are"} kept apart by energy alone.`
+          : ""}
         {nearest && merged && nearest.rmsd > merged.rmsd
           ? ` Nothing stands between that and ${withUnit(formatRmsd(nearest.rmsd), "Å")}.`
           : ""}

@@ -179,12 +179,12 @@ export function SiftSettings({
           }}
         />
         <SelectField
-          label="Symmetry"
+          label="Equivalent atoms"
           value={draft.symmetry === false ? "off" : "on"}
           disabled={locked}
           choices={[
-            { value: "on", label: "On: equal atoms may exchange" },
-            { value: "off", label: "Off: atoms in file order" },
+            { value: "on", label: "May exchange" },
+            { value: "off", label: "In file order" },
           ]}
           onChange={(event) => set({ symmetry: event.currentTarget.value === "on" })}
         />

@@ -38,7 +38,13 @@ export function WorkbenchHeader({
           {ensemble.levels.map((level) => (
             <LevelName key={level.id} name={level.name} ordinal={level.ordinal} />
           ))}
-          {ensemble.example ? <Badge tone="locked">Example, read only</Badge> : null}
+          {ensemble.role === "guest" ? (
+            <Badge tone="locked">Example, read only</Badge>
+          ) : ensemble.role === "reader" ? (
+            <Badge tone="locked">Read only</Badge>
+          ) : ensemble.example ? (
+            <Badge title="Anybody may look at it from the front page.">Example</Badge>
+          ) : null}
           {rename}
         </div>
       </div>

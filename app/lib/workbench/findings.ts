@@ -132,7 +132,8 @@ export function distinctFinding(result: SiftResult): Finding {
       ? ""
       : `${plural(result.dropped.length, "frame was", "frames were")} left out as ` +
         `${result.dropped.length === 1 ? "a repeat; it names whom it repeats" : "repeats; each names whom it repeats"}. `;
-  const work = `${plural(result.pairsExamined, "pair")} had to be compared, in ${formatSeconds(result.seconds)}.`;
+  const took = result.seconds < 0.01 ? `under ${formatSeconds(0.01)}` : formatSeconds(result.seconds);
+  const work = `${plural(result.pairsExamined, "pair")} had to be compared, in ${took}.`;
   return { text, second: [`${explained}${work}`, left].filter(Boolean).join(" ") };
 }
 
