@@ -3,6 +3,7 @@ import { fileURLToPath } from "node:url";
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { DomainError } from "./errors.ts";
+import { EnergyScan } from "./intake/energies.ts";
 import type { XyzFrame } from "./xyz/frame.ts";
 import { readXyz, type XyzOptions, XyzReader } from "./xyz.server.ts";
 
@@ -169,7 +170,10 @@ test("broken ranges end where the page says, for any order of lines", () => {
     ),
     { seed: 43, numRuns: 8000 },
   );
-});
+}, 60_000);
+
+// `FUZZ_RUNS=100000 npx vitest run app/lib/xyz.server.test.ts` for the long run.
+const RUNS = Number(process.env.FUZZ_RUNS ?? 2000);
 
 describe("random damage", () => {
   test("never crashes, loses no frame number, and does not depend on chunks", () => {
@@ -180,7 +184,7 @@ describe("random damage", () => {
     };
     const base = encoder.encode(MIXED);
     const spice = encoder.encode('\n\r\t ,.-+*^"=[]{}\\eEdD0123456789CHX@\u00e9\u2212');
-    for (let run = 0; run < 2000; run++) {
+    for (let run = 0; run < RUNS; run++) {
       const bytes = [...base];
       for (let hit = 0; hit < 1 + random(6); hit++) {
         const at = random(bytes.length);
@@ -206,7 +210,7 @@ describe("random damage", () => {
         }
       }
     }
-  }, 60_000);
+  }, 3_600_000);
 });
 
 describe("limits stop early and name limit and value", () => {
@@ -253,6 +257,18 @@ describe("limits stop early and name limit and value", () => {
     });
   });
 });
+
+test("a long comment in any style is read once, and within the stack", () => {
+  const fillers = ["1 ", '"', "[", "a=", "a:1 ", "Properties ", "' ", "\\", "a=[1,2] ", "E (kcal/mol) "];
+  for (const filler of fillers) {
+    const comment = filler.repeat(Math.floor(300_000 / filler.length));
+    const { frames } = read(`1\n${comment}\nC 0 0 0\n1\nLattice="${comment}"\nC 0 0 0\n`);
+    expect(frames).toHaveLength(2);
+    const scan = new EnergyScan();
+    for (const one of frames) scan.add(one, one.comment);
+    expect(scan.finish().candidates.length).toBeLessThan(200);
+  }
+}, 60_000);
 
 test("frames are numbered on through several files", () => {
   const { frames } = read(frame("a") + frame("b", WATER.replace("0.7572", "x")), { firstNumber: 41 });

@@ -79,7 +79,7 @@ export class XyzReader {
   #note: { line: number; text: string } | null = null;
   #blank = 0;
   #anyCountNote = false;
-  #elements = new Uint8Array(0);
+  #elements: Uint8Array = new Uint8Array(0);
   readonly #once = new Set<string>();
 
   constructor(options: XyzOptions) {
@@ -407,20 +407,21 @@ export class XyzReader {
   }
 
   #emit(builder: FrameBuilder, rest: Pick<FramePlace, "lineCount" | "fault" | "noteLines">): void {
-    const frame = finishFrame(builder, { file: this.#file, number: this.#number(), ...rest });
+    const elements = this.#shareElements(builder.elements);
+    const frame = finishFrame(builder, { file: this.#file, number: this.#number(), elements, ...rest });
     this.frames += 1;
     if (frame.problem) this.held += 1;
     else if (builder.numbersForSymbols > 0) {
       const message = "Atoms are given by atomic numbers; they are read as their elements.";
       this.#remarkOnce("X18", { line: builder.numbersForSymbols, message });
     }
-    this.#out.push(frame.problem ? frame : this.#shareElements(frame));
+    this.#out.push(frame);
   }
 
-  #shareElements(frame: XyzFrame): XyzFrame {
-    if (sameBytes(this.#elements, frame.elements)) return { ...frame, elements: this.#elements };
-    this.#elements = frame.elements as Uint8Array<ArrayBuffer>;
-    return frame;
+  /** The array of the frame before where it says the same. */
+  #shareElements(elements: Uint8Array): Uint8Array {
+    if (!sameBytes(this.#elements, elements)) this.#elements = elements;
+    return this.#elements;
   }
 
   #finish(): void {

@@ -58,7 +58,8 @@ export function scanComment(comment: string): ScannedComment {
       behind: wordsBehind(tokens, at),
     };
     const found = numbersOf(token, numbers.length, context);
-    numbers.push(...found);
+    // One by one: an array in a comment may be longer than a call takes arguments.
+    for (const number of found) numbers.push(number);
     if (key !== null) keyed.set(key, { text: token.text, number: found.length === 1 ? found[0]! : null });
     words = found.length > 0 ? [] : [...words.slice(-4), token.text];
   });

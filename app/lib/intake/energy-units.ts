@@ -1,4 +1,5 @@
 import type { EnergyUnit } from "../units.ts";
+import { remember } from "./remember.ts";
 
 /** Spellings with case, blanks, dots and the like taken out. Row E06. */
 const SPELLINGS: Readonly<Record<string, EnergyUnit>> = {
@@ -36,7 +37,7 @@ const SPELLINGS: Readonly<Record<string, EnergyUnit>> = {
  * @example parseEnergyUnit("kcal mol^-1") // "kcal/mol"
  * @example parseEnergyUnit("a.u.") // "hartree"
  */
-export function parseEnergyUnit(word: string): EnergyUnit | null {
+export const parseEnergyUnit = remember((word): EnergyUnit | null => {
   const plain = word
     .replace(/[\s_·.*^()[\]{},;"']/g, "")
     .replace(/[⁻−–]/g, "-")
@@ -46,14 +47,14 @@ export function parseEnergyUnit(word: string): EnergyUnit | null {
   if (plain === "k" || /^M[eE]/.test(plain)) return null;
   const spelling = plain.toLowerCase();
   return Object.hasOwn(SPELLINGS, spelling) ? (SPELLINGS[spelling] ?? null) : null;
-}
+});
 
 /**
  * The unit in a key or field name: in brackets, or as its last parts (`E[kJ/mol]`, `MMFF94_ENERGY_KCAL_MOL`, `E/eV`).
  *
  * @example unitOfName("energy_ev") // "eV"
  */
-export function unitOfName(name: string): EnergyUnit | null {
+export const unitOfName = remember((name): EnergyUnit | null => {
   const bracketed = /[([{]([^()[\]{}]{1,30})[)\]}]/.exec(name)?.[1];
   if (bracketed !== undefined) {
     const unit = parseEnergyUnit(bracketed);
@@ -67,7 +68,7 @@ export function unitOfName(name: string): EnergyUnit | null {
   }
   const slash = name.indexOf("/");
   return slash > 0 ? suffixUnit(name.slice(slash + 1)) : null;
-}
+});
 
 /** `energy_K` and `energy_h` say too little. */
 function suffixUnit(text: string): EnergyUnit | null {

@@ -1,6 +1,7 @@
 import type { EnergyUnit } from "../units.ts";
 import type { CommentNumber, ScannedComment } from "./comment-numbers.ts";
 import { parseEnergyUnit, unitOfName } from "./energy-units.ts";
+import { remember } from "./remember.ts";
 
 /**
  * What a number of a comment line may be, by the words round it:
@@ -33,7 +34,7 @@ const OTHER_UNITS = set(
 );
 
 /** Parts of a name: `MMFF94_ENERGY_KCAL_MOL`, `E(RHF)`, `totalEnergy`. */
-function nameWords(name: string): string[] {
+const nameWords = remember((name): readonly string[] => {
   return name
     .slice(0, 200)
     .replace(/[Δδ∆]/g, "delta ")
@@ -41,15 +42,15 @@ function nameWords(name: string): string[] {
     .toLowerCase()
     .split(/[^\p{L}°%]+/u)
     .filter((word) => word !== "");
-}
+});
 
-function classOfName(name: string): NumberClass | null {
+const classOfName = remember((name): NumberClass | null => {
   const words = nameWords(name);
   if (words.some((word) => MEASURES.has(word))) return "other";
   if (words.some((word) => ENERGY_WORDS.has(word))) return "energy";
   // "conf 7" leaves its number to count; "conf_0007" has it in itself.
   return !/\d/.test(name) && words.some((word) => COUNTERS.has(word)) ? "other" : null;
-}
+});
 
 /** Whether a key names an energy: `E`, `total_energy`, `E(RHF)`, but not `energy_gap` or `time`. */
 export function namesEnergy(key: string): boolean {

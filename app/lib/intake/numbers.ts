@@ -84,7 +84,8 @@ export function numberLength(text: string, from: number): number {
 export function parseNumber(token: string): number | null {
   const length = numberLength(token, 0);
   if (length === 0 || length !== token.length) return null;
-  const value = Number(token.replace(/[dD]/, "e"));
+  let value = Number(token);
+  if (Number.isNaN(value)) value = Number(token.replace(/[dD]/, "e"));
   return Number.isFinite(value) ? value : null;
 }
 

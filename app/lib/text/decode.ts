@@ -16,6 +16,14 @@ function decodeWindows1252(bytes: Uint8Array): string {
   return text;
 }
 
+/** Up to here plain ASCII is turned into text without the decoder, which costs more than the text. */
+const SHORT = 512;
+
+function isAscii(bytes: Uint8Array): boolean {
+  for (let k = 0; k < bytes.length; k++) if (bytes[k]! > 127) return false;
+  return true;
+}
+
 /** A line's text; `legacy` is true where its bytes are not UTF-8 and were read as Windows-1252 (row G03). */
 export interface DecodedText {
   text: string;
@@ -25,6 +33,9 @@ export interface DecodedText {
 /** Text of the bytes from `start` up to, not including, `end`. Each line decides for itself, so that chunks do not matter. */
 export function decodeText(bytes: Uint8Array, start: number, end: number): DecodedText {
   const piece = bytes.subarray(start, end);
+  if (piece.length <= SHORT && isAscii(piece)) {
+    return { text: String.fromCharCode.apply(null, piece as unknown as number[]), legacy: false };
+  }
   try {
     return { text: utf8.decode(piece), legacy: false };
   } catch {

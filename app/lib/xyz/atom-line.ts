@@ -1,7 +1,8 @@
-import { type ParsedElement, parseElement } from "../chem/elements.ts";
+import type { ParsedElement } from "../chem/elements.ts";
 import { type NumberFault, numberLength, plainBlanksAndMinus, readNumber } from "../intake/numbers.ts";
 import type { HoldReason } from "../intake/report.ts";
 import type { Layout } from "./layout.ts";
+import { readSpecies } from "./species.ts";
 
 /** An atom line as text: the slow path, which accepts what is unusual and explains what is wrong. */
 
@@ -14,13 +15,17 @@ export interface AtomFault {
   readonly column?: number;
 }
 
-export interface ReadAtom {
+/** What an atom's name says. */
+export interface NamedAtom {
   z: number;
   isotope: number;
   /** The file's name of the atom where it says more than the element. */
   label: string | null;
   dummy: boolean;
   byNumber: boolean;
+}
+
+export interface ReadAtom extends NamedAtom {
   /** An exponent written `*^`. */
   caret: boolean;
   /** U+2212 or a blank beyond ASCII was read as - and space. */
@@ -42,18 +47,6 @@ interface Field {
 
 const MORE_WIDTH = "Write the file with more width between the columns.";
 const AXES = ["x", "y", "z"] as const;
-
-/** Element readings by token: files repeat a handful. Emptied when odd files fill it. */
-const known = new Map<string, ParsedElement>();
-
-function element(token: string): ParsedElement {
-  const found = known.get(token);
-  if (found) return found;
-  if (known.size >= 4096) known.clear();
-  const parsed = parseElement(token);
-  known.set(token, parsed);
-  return parsed;
-}
 
 /** Fields apart by blanks, with their columns. */
 export function splitFields(text: string): Field[] {
@@ -114,7 +107,7 @@ export function readAtomLine(
   const wrong = layout.columns === null ? checkPlain(fields) : checkColumns(fields, layout.columns);
   if (wrong) return wrong;
   const species = fields[layout.species]!;
-  const parsed = element(species.text);
+  const parsed = readSpecies(species.text);
   const fault = elementFault(parsed, species);
   if (fault) return { kind: "fault", fault };
   let caret = false;
@@ -125,9 +118,14 @@ export function readAtomLine(
     if (reading.caret) caret = true;
     positions[offset + axis] = reading.value;
   }
-  const atom = makeAtom(parsed, species.text, layout.label === null ? null : fields[layout.label]!.text);
-  const extra = layout.columns === null ? fields.length - 4 : layout.columns - 4;
-  return { kind: "atom", atom: { ...atom, caret, substituted: text !== line, commas, extra } };
+  const { z, isotope, label, dummy, byNumber } = makeAtom(
+    parsed,
+    species.text,
+    layout.label === null ? null : fields[layout.label]!.text,
+  );
+  const extra = (layout.columns ?? fields.length) - 4;
+  const substituted = text !== line;
+  return { kind: "atom", atom: { z, isotope, label, dummy, byNumber, caret, substituted, commas, extra } };
 }
 
 function isLoneInteger(fields: readonly Field[]): boolean {
@@ -147,13 +145,13 @@ function checkPlain(fields: readonly Field[]): AtomLine | null {
     fields.slice(from, from + 3).every((field) => readNumber(field.text).fault === null);
   if (/^\d+$/.test(first!.text)) {
     if (areNumbers(1)) return null;
-    const indexed = second !== undefined && element(second.text).kind !== "unknown" && areNumbers(2);
+    const indexed = second !== undefined && readSpecies(second.text).kind !== "unknown" && areNumbers(2);
     if (indexed && !/^\d/.test(second.text)) return { kind: "fault", fault: indexColumn(first!) };
     const brokenNumber = fields.length >= 4 && fields.slice(1, 4).every((field) => isNumberish(field.text));
     return brokenNumber ? null : { kind: "other" };
   }
   if (areNumbers(1)) return null;
-  const isElement = element(first!.text).kind !== "unknown";
+  const isElement = readSpecies(first!.text).kind !== "unknown";
   if (fields.length === 1 && !isGlued(first!.text) && !(isElement && /^[A-Za-z]{1,2}$/.test(first!.text))) {
     return { kind: "other" };
   }
@@ -265,7 +263,8 @@ function numberFault(fault: NumberFault, field: Field, axis: number): AtomFault 
   }
 }
 
-function makeAtom(parsed: ParsedElement, token: string, written: string | null) {
+/** An atom out of its name; `written` is its entry in a column of labels, null where there is none. */
+export function makeAtom(parsed: ParsedElement, token: string, written: string | null): NamedAtom {
   // A column of labels that repeats the symbol says no more than the element.
   const label = written === token ? null : written;
   if (parsed.kind === "dummy")

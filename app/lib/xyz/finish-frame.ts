@@ -11,6 +11,8 @@ export interface FramePlace {
   readonly file: string;
   readonly number: number;
   readonly lineCount: number;
+  /** Equal to those of the builder, shared with other frames. */
+  readonly elements: Uint8Array;
   /** A fault of the frame's form, worse than what its lines hold. */
   readonly fault: BuilderFault | null;
   /** Lines behind the frame that belong to none (row X11), and the first of them. */
@@ -38,7 +40,7 @@ export function finishFrame(builder: FrameBuilder, place: FramePlace): XyzFrame 
     label,
     charge: wholeNumber(builder.keys, ["charge", "total_charge", "net_charge"]),
     multiplicity: wholeNumber(builder.keys, ["multiplicity", "spin_multiplicity", "mult"]),
-    elements: sound ? builder.elements : new Uint8Array(0),
+    elements: sound ? place.elements : new Uint8Array(0),
     isotopes: sound ? builder.isotopes : null,
     labels: sound ? builder.labels : null,
     positions: sound ? builder.positions : new Float64Array(0),

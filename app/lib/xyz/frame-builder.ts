@@ -4,10 +4,17 @@ import {
   hasProperties,
   parseExtendedComment,
 } from "../intake/extended-comment.ts";
-import { type AtomFault, looksLikeAtom, type ReadAtom, readAtomLine } from "./atom-line.ts";
+import {
+  type AtomFault,
+  looksLikeAtom,
+  makeAtom,
+  type NamedAtom,
+  type ReadAtom,
+  readAtomLine,
+} from "./atom-line.ts";
 import type { CountLine } from "./count-line.ts";
 import { type ExtraColumn, isPlainOrder, type Layout, PLAIN_LAYOUT, parseProperties } from "./layout.ts";
-import type { PlainTarget } from "./plain-atoms.ts";
+import type { NamedElement, PlainTarget } from "./plain-atoms.ts";
 
 /** A fault with the line it stands on, and the atom (from 1) where it concerns one. */
 export interface BuilderFault extends AtomFault {
@@ -142,6 +149,19 @@ export class FrameBuilder implements PlainTarget {
   #put(atom: ReadAtom, line: TextLine): void {
     const k = this.read;
     this.elements[k] = atom.z;
+    this.#putName(k, atom, line.number);
+    if (atom.caret) this.carets ||= line.number;
+    if (atom.substituted) this.substitutions ||= line.number;
+    this.#checkCommas(atom, line);
+    if (this.extra < atom.extra) this.extra = atom.extra;
+  }
+
+  /** From the fast path; its plain layout has no column of labels. */
+  name(k: number, token: string, parsed: NamedElement): void {
+    this.#putName(k, makeAtom(parsed, token, null), this.line + 2 + k);
+  }
+
+  #putName(k: number, atom: NamedAtom, line: number): void {
     if (atom.isotope !== 0) {
       this.isotopes ??= new Uint16Array(this.count);
       this.isotopes[k] = atom.isotope;
@@ -151,11 +171,7 @@ export class FrameBuilder implements PlainTarget {
       this.labels[k] = atom.label;
     }
     if (atom.dummy) this.dummies += 1;
-    if (atom.byNumber && this.layout === PLAIN_LAYOUT) this.numbersForSymbols ||= line.number;
-    if (atom.caret) this.carets ||= line.number;
-    if (atom.substituted) this.substitutions ||= line.number;
-    this.#checkCommas(atom, line);
-    if (this.extra < atom.extra) this.extra = atom.extra;
+    if (atom.byNumber && this.layout === PLAIN_LAYOUT) this.numbersForSymbols ||= line;
   }
 
   /** Commas separate in every line or in none. */

@@ -1,6 +1,7 @@
-import { parseElement } from "../chem/elements.ts";
+import { type ParsedElement, parseElement } from "../chem/elements.ts";
 import { decimalQuotient, POWERS_OF_TEN } from "../intake/numbers.ts";
 import { type LineBuffer, MAX_LINE_BYTES } from "../text/lines.ts";
+import { readSpecies } from "./species.ts";
 
 /**
  * The fast path of the XYZ reader: atom lines `El x y z [more columns]` straight from bytes. Whatever is unusual
@@ -12,8 +13,10 @@ const TAB = 9;
 const LF = 10;
 const CR = 13;
 const BLANK = 32;
+const COMMA = 44;
+const LONGEST_NAME = 16;
 
-/** Atomic number by the two bytes of a plain symbol in any case that leaves one element; 0 sends to the slow path. */
+/** Atomic number by the two bytes of a plain symbol in any case that leaves one element; 0 for any other name. */
 const symbolTable = makeSymbolTable();
 
 function makeSymbolTable(): Uint8Array {
@@ -37,7 +40,12 @@ export interface PlainTarget {
   readonly positions: Float64Array;
   /** Columns that must follow z; -1 lets the first line decide. */
   extra: number;
+  /** Takes note of a name that says more than its element: label, isotope, dummy, atomic number. */
+  name(atom: number, token: string, parsed: NamedElement): void;
 }
+
+/** What a name can mean where it is clear. */
+export type NamedElement = Extract<ParsedElement, { kind: "element" | "dummy" }>;
 
 /**
  * Reads complete plain atom lines from the buffer into `target` and moves the buffer on, until the frame is full or a
@@ -73,21 +81,33 @@ function readPlainAtom(
   let at = start;
   let c = bytes[at]!;
   while (c === BLANK || c === TAB) c = bytes[++at]!;
+  const from = at;
   const first = c;
   c = bytes[++at]!;
   let second = BLANK;
   if (c !== BLANK && c !== TAB) {
     second = c;
     c = bytes[++at]!;
-    if (c !== BLANK && c !== TAB) return -1;
   }
-  const z = symbolTable[(first << 8) | second]!;
-  if (z === 0) return -1;
+  let z = c === BLANK || c === TAB ? symbolTable[(first << 8) | second]! : 0;
+  let named: NamedElement | null = null;
+  let token = "";
+  if (z === 0) {
+    at = from;
+    c = first;
+    while (c > BLANK && c < 127 && c !== COMMA && at - from < LONGEST_NAME) c = bytes[++at]!;
+    if (at === from) return -1;
+    token = asciiText(bytes, from, at);
+    const parsed = readSpecies(token);
+    if (parsed.kind !== "element" && parsed.kind !== "dummy") return -1;
+    named = parsed;
+    z = parsed.kind === "element" ? parsed.z : 0;
+  }
   const positions = target.positions;
   for (let axis = 0; axis < 3; axis++) {
     if (c !== BLANK && c !== TAB) return -1;
     while (c === BLANK || c === TAB) c = bytes[++at]!;
-    const token = at;
+    const start = at;
     const negative = c === 45;
     if (negative || c === 43) c = bytes[++at]!;
     const head = at;
@@ -120,7 +140,7 @@ function readPlainAtom(
       if (value >= 9007199254740992) {
         // From 2^53 on the integer itself may be rounded.
         value = digits > 18 ? Number.NaN : decimalQuotient(high, low, digits - 9, decimals);
-        if (Number.isNaN(value)) value = Math.abs(Number(asciiText(bytes, token, at)));
+        if (Number.isNaN(value)) value = Math.abs(Number(asciiText(bytes, start, at)));
         if (value === Infinity) return -1;
         divided = true;
       }
@@ -134,7 +154,7 @@ function readPlainAtom(
     while (c === BLANK || c === TAB) c = bytes[++at]!;
     if (c <= CR) break;
     // Commas in any column may mean that commas separate: the slow path looks at the whole line.
-    while (c > BLANK && c !== 44 && c < 128) c = bytes[++at]!;
+    while (c > BLANK && c !== COMMA && c < 128) c = bytes[++at]!;
     if (c !== BLANK && c !== TAB && c !== LF && c !== CR) return -1;
     extra += 1;
   }
@@ -146,6 +166,7 @@ function readPlainAtom(
     target.extra = extra;
   }
   target.elements[atom] = z;
+  if (named !== null) target.name(atom, token, named);
   return at;
 }
 
