@@ -33,13 +33,17 @@ export default defineConfig({
       ],
     },
   },
+  projects: [
+    { name: "browser", testIgnore: "log.spec.ts" },
+    // After all others: it looks through what the server wrote down about them.
+    { name: "log", testMatch: "log.spec.ts", dependencies: ["browser"] },
+  ],
   webServer: {
     // The same start as a person's, on a throw-away database.
-    command: "exec node scripts/e2e-server.mjs",
+    command: "mkdir -p .test && exec node scripts/e2e-server.mjs > .test/server.log",
     url: `${baseURL}/readyz`,
     timeout: 180_000,
     gracefulShutdown: { signal: "SIGTERM", timeout: 30_000 },
-    stdout: process.env.E2E_SERVER_LOG ? "pipe" : "ignore",
     stderr: "pipe",
     env: { ...stringsOf(process.env), PORT: process.env.E2E_PORT },
   },

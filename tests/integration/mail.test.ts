@@ -15,7 +15,7 @@ import { letterHtml } from "~/services/mail/transport.server";
 const LETTER = {
   recipient: "ada@lab.example",
   subject: "A subject",
-  body: "First paragraph & more.\n\nhttp://127.0.0.1:3000/reset-password/SECRET\n\nThe end.",
+  body: "First paragraph & more.\n\nhttp://127.0.0.1:3000/reset-password/SECRET-of-43-characters-as-they-are-made-here\n\nThe end. ä",
 };
 
 let folder = "";
@@ -44,7 +44,11 @@ describe("the mail queue", () => {
     const text = readFileSync(path.join(folder, "mail", file), "utf8");
     expect(text).toContain("To: ada@lab.example");
     expect(text).toContain("Subject: A subject");
-    expect(text).toContain("http://127.0.0.1:3000/reset-password/SECRET");
+    // Whole, in a line of its own: it is there to be copied.
+    expect(text).toMatch(
+      /^http:\/\/127\.0\.0\.1:3000\/reset-password\/SECRET-of-43-characters-as-they-are-made-here$/m,
+    );
+    expect(text).toContain("The end. ä");
     expect(await sendDueMail()).toBe(0);
   });
 

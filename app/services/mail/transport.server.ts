@@ -20,29 +20,27 @@ export function letterHtml(body: string): string {
   return `<!doctype html><html lang="en"><body style="font-family:sans-serif">${paragraphs.join("")}</body></html>`;
 }
 
-function parts(letter: Letter) {
-  return {
-    from: env().MAIL_FROM,
-    to: letter.recipient,
-    subject: letter.subject,
-    text: letter.body,
-    html: letterHtml(letter.body),
-    // Nothing that an address could smuggle in is read from disk or fetched.
-    disableFileAccess: true,
-    disableUrlAccess: true,
-  };
-}
+const headerValue = (text: string) => text.replace(/[\r\n]+/g, " ");
 
-/** Without SMTP_URL letters are kept as files that a person can open: `.data/mail/*.eml`. */
+/**
+ * Without SMTP_URL letters are kept as files that a person can open: `.data/mail/*.eml`. Their lines stay whole, so that
+ * the link can be copied out of them; a mail library would fold it.
+ */
 async function keepLocally(id: string, letter: Letter): Promise<void> {
-  const made = await createTransport({ streamTransport: true, buffer: true, newline: "unix" }).sendMail(
-    parts(letter),
-  );
+  const head = [
+    `From: ${headerValue(env().MAIL_FROM)}`,
+    `To: ${headerValue(letter.recipient)}`,
+    `Subject: ${headerValue(letter.subject)}`,
+    `Date: ${new Date().toUTCString().replace("GMT", "+0000")}`,
+    "MIME-Version: 1.0",
+    "Content-Type: text/plain; charset=utf-8",
+    "Content-Transfer-Encoding: 8bit",
+  ];
   const folder = path.resolve(env().DATA_DIRECTORY, "mail");
   await mkdir(folder, { recursive: true, mode: 0o700 });
   const stamp = new Date().toISOString().replace(/[:.]/g, "-");
   const file = path.join(folder, `${stamp}-${id}.eml`);
-  await writeFile(`${file}.new`, made.message as Buffer, { mode: 0o600 });
+  await writeFile(`${file}.new`, `${head.join("\n")}\n\n${letter.body}\n`, { mode: 0o600 });
   await rename(`${file}.new`, file);
 }
 
@@ -54,7 +52,16 @@ async function sendBySmtp(url: string, letter: Letter): Promise<void> {
     socketTimeout: TIME_OUT_MS,
   });
   try {
-    await transport.sendMail(parts(letter));
+    await transport.sendMail({
+      from: env().MAIL_FROM,
+      to: letter.recipient,
+      subject: letter.subject,
+      text: letter.body,
+      html: letterHtml(letter.body),
+      // Nothing that an address could smuggle in is read from disk or fetched.
+      disableFileAccess: true,
+      disableUrlAccess: true,
+    });
   } finally {
     transport.close();
   }
