@@ -60,7 +60,7 @@ describe.each(ENSEMBLES)("$name, from upload to populations over the API", ({ na
   const expected = expectedOf(name);
   let ensembleId: string;
   beforeAll(async () => {
-    const unit = energyUnit === undefined ? {} : { energyUnit };
+    const unit: Record<string, string> = energyUnit === undefined ? {} : { energyUnit };
     const files = [{ name: `${name}.xyz`, content: reference(`ensembles/${name}.xyz`) }];
     const taken = await takenIn(token, files, { level: "MMFF94", ...unit });
     expect(taken.intake.frames).toBe(expected.n_frames);

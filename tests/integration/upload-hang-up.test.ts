@@ -14,9 +14,7 @@ import { call } from "../setup/app";
 /** The real server around the application, on a port of its own. */
 const serving = makeServer({
   application,
-  makeContext: application.makeContext,
   staticFolder: null,
-  before: undefined,
   handle: (request: Request) => {
     const { pathname, search } = new URL(request.url);
     const { method, headers, body, signal } = request;

@@ -43,6 +43,9 @@ const MAX_PROPERTIES = 64;
 const MAX_NAME = 120;
 /** Keys with a meaning of their own. */
 const RESERVED = new Set([
+  "name",
+  "label",
+
   "charge",
   "total_charge",
   "net_charge",

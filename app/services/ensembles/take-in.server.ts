@@ -1,5 +1,5 @@
 import { eq } from "drizzle-orm";
-import { inTransaction } from "../../db/client.server.ts";
+import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { isDuplicate } from "../../db/driver-errors.server.ts";
 import { ensembles } from "../../db/schema.server.ts";
 import { type UploadFields, uploadFieldsSchema } from "../../lib/api/schemas.ts";
@@ -131,7 +131,7 @@ async function publish(
 ): Promise<void> {
   const { reading, store } = upload;
   const name = fields.name ?? nameOfFile(reading.files[0]?.name ?? "Ensemble");
-  await inTransaction(async (tx) => {
+  const act = async (tx: Transaction) => {
     await pointFiles(tx, reading.ensembleId, await store.publish(tx));
     const seriesId = await seriesByName(tx, grant.teamId, fields.series ?? DEFAULT_SERIES, grant);
     const now = new Date();
@@ -163,7 +163,9 @@ async function publish(
         ...done.counts,
       },
     });
-  });
+  };
+  // Without locks on gaps: uploads of the same files at once wait for the first, instead of ending each other.
+  await inTransaction(act, { isolation: "read committed" });
 }
 
 async function finish(all: Finish): Promise<TakenIn> {

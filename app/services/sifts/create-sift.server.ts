@@ -135,7 +135,10 @@ export async function askForSift(
   request: SiftRequest,
   options: { automatic?: boolean } = {},
 ): Promise<AskedSift> {
-  const ask = () => inTransaction((tx) => insertOrFind(tx, at, request, options.automatic === true));
+  const automatic = options.automatic === true;
+  // Without locks on gaps: many who ask for the same at once wait for the first, instead of ending each other.
+  const ask = () =>
+    inTransaction((tx) => insertOrFind(tx, at, request, automatic), { isolation: "read committed" });
   const id = await ask().catch((error: unknown) => {
     // Somebody asked for the same one at the same moment: it is there now.
     if (isDuplicate(error)) return ask();

@@ -1,0 +1,2 @@
+/** Builds `.worker/compute.worker.mjs`. */
+export function buildWorker(): Promise<void>;
