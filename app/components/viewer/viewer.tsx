@@ -10,6 +10,7 @@ import {
   useState,
 } from "react";
 import { IconButton } from "~/components/ui/button";
+import { Checkbox } from "~/components/ui/checkbox";
 import { DepthKey } from "~/components/ui/depth-key";
 import type { HydrogenMode, ViewMode } from "~/lib/url-state";
 import { pickText, viewMarks } from "~/lib/view/marks";
@@ -148,14 +149,19 @@ export function Viewer(props: ViewerProps) {
             Atoms to measure.
           </p>
         </div>
-        <figcaption className="pointer-events-none absolute top-2 left-3 max-w-[calc(100%-8.5rem)] pointer-coarse:max-w-[calc(100%-10rem)] text-xs text-ink-2 lg:top-3">
+        <figcaption className="pointer-events-none absolute top-2 left-3 max-w-[calc(100%-8.5rem)] max-lg:max-w-[calc(100%-8rem)] text-xs text-ink-2 lg:top-3">
           <b className="font-semibold text-ink">{caption.strong}</b> {caption.rest}
         </figcaption>
         <div className="absolute top-1 right-1 flex lg:top-2 lg:right-2 pointer-coarse:-top-1 pointer-coarse:[&_button]:w-9 print:hidden">
           <IconButton label="Reset view" onClick={view.reset}>
             <RotateCcw aria-hidden="true" />
           </IconButton>
-          <IconButton label="Atom numbers" aria-pressed={numbers} onClick={() => setNumbers(!numbers)}>
+          <IconButton
+            label="Atom numbers"
+            aria-pressed={numbers}
+            onClick={() => setNumbers(!numbers)}
+            className="max-lg:hidden"
+          >
             <Hash aria-hidden="true" />
           </IconButton>
           <IconButton label="Save picture" onClick={save}>
@@ -185,7 +191,12 @@ export function Viewer(props: ViewerProps) {
         }
       />
       <div className={`mt-3 grid gap-3 print:hidden ${options ? "" : "max-lg:hidden"}`}>
-        <HydrogenSegments hydrogens={hydrogens} onHydrogens={props.onHydrogens} className="lg:hidden" />
+        <div className="flex flex-wrap items-center gap-x-6 gap-y-2 lg:hidden">
+          <HydrogenSegments hydrogens={hydrogens} onHydrogens={props.onHydrogens} />
+          <Checkbox checked={numbers} onChange={() => setNumbers(!numbers)}>
+            Atom numbers
+          </Checkbox>
+        </div>
         <DepthKey className="w-full" />
         {props.children}
         <PickAtoms elements={elements} picked={picked} onPick={onPick} />

@@ -41,7 +41,7 @@ export interface Point {
 const INSET = { top: 44, bottom: 40, side: 14 } as const;
 /** Small boxes give less of it away. */
 const SHALLOW = 260;
-const SHALLOW_INSET = { top: 30, bottom: 34, side: 10 } as const;
+const SHALLOW_INSET = { top: 36, bottom: 34, side: 10 } as const;
 const BARE_INSET = { top: 6, bottom: 6, side: 6 } as const;
 /** Å around the outermost atoms: half a stick, a ring, an atom number. */
 const PADDING = 0.5;
