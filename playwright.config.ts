@@ -2,6 +2,8 @@ import { defineConfig, devices } from "@playwright/test";
 
 // The server of a run gets its port once; worker processes read the configuration again and must find the same.
 process.env.E2E_PORT ||= String(20_000 + Math.floor(Math.random() * 20_000));
+// The log of the server, for the test that looks through it.
+process.env.E2E_LOG ||= `.test/server-${process.env.E2E_PORT}.log`;
 const baseURL = `http://127.0.0.1:${process.env.E2E_PORT}`;
 
 export default defineConfig({
@@ -40,7 +42,7 @@ export default defineConfig({
   ],
   webServer: {
     // The same start as a person's, on a throw-away database.
-    command: "mkdir -p .test && exec node scripts/e2e-server.mjs > .test/server.log",
+    command: "mkdir -p .test && exec node scripts/e2e-server.mjs > $E2E_LOG",
     url: `${baseURL}/readyz`,
     timeout: 180_000,
     gracefulShutdown: { signal: "SIGTERM", timeout: 30_000 },

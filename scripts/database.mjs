@@ -21,6 +21,7 @@ import { connect } from "node:net";
 import os from "node:os";
 import path from "node:path";
 import { needProgram } from "./lib/debian.mjs";
+import { withLock } from "./lib/lock.mjs";
 import {
   commandLine,
   findProgram,
@@ -246,27 +247,6 @@ async function startServer(places, { durable, broad }) {
   );
 }
 
-/** One starter at a time in a folder; a lock whose maker is gone counts for nothing. */
-async function withLock(places, work) {
-  mkdirSync(places.run, { recursive: true });
-  for (;;) {
-    try {
-      writeFileSync(places.lock, `${process.pid} ${startTicks(process.pid)}`, { flag: "wx" });
-      break;
-    } catch (error) {
-      if (error.code !== "EEXIST") throw error;
-      const [pid, ticks] = existsSync(places.lock) ? readFileSync(places.lock, "utf8").split(" ") : [];
-      if (pid && startTicks(Number(pid)) !== ticks) rmSync(places.lock, { force: true });
-      else await pause(100);
-    }
-  }
-  try {
-    return await work();
-  } finally {
-    rmSync(places.lock, { force: true });
-  }
-}
-
 /** Processes that use the server of this folder; notes of ended ones are swept. */
 function livingUses(places) {
   const living = [];
@@ -302,7 +282,7 @@ export async function openDatabase({
   const places = placesIn(path.resolve(folder));
   const use = path.join(places.uses, `${process.pid}-${startTicks(process.pid)}`);
   mkdirSync(places.folder, { recursive: true, mode: 0o700 });
-  const state = await withLock(places, async () => {
+  const state = await withLock(places.lock, async () => {
     const known = serverPid(places) === null ? null : readState(places);
     const current =
       known && (await greets(known.port)) ? known : await startServer(places, { durable, broad });
@@ -323,7 +303,7 @@ export async function openDatabase({
         busy = true;
         try {
           log.warn("the database has gone; starting it again");
-          await withLock(places, async () => {
+          await withLock(places.lock, async () => {
             if (serverPid(places) === null) await startServer(places, { durable, broad });
           });
         } catch (error) {
@@ -336,7 +316,7 @@ export async function openDatabase({
       return watch;
     },
     async close() {
-      await withLock(places, async () => {
+      await withLock(places.lock, async () => {
         rmSync(use, { force: true });
         if (livingUses(places).length === 0) await endServer(places);
       });

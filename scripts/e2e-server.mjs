@@ -1,6 +1,6 @@
 // The server that the browser tests talk to: `npm start` itself, on a throw-away database and with its own build, data
 // folder and demo password, so that an instance that runs beside it is left alone.
-import { mkdtempSync, rmSync } from "node:fs";
+import { mkdtempSync, readdirSync, rmSync, statSync } from "node:fs";
 import os from "node:os";
 import path from "node:path";
 import { openThrowaway } from "./database.mjs";
@@ -25,6 +25,12 @@ Object.assign(process.env, {
   APP_ORIGIN: `http://127.0.0.1:${process.env.PORT}`,
   HOST: "127.0.0.1",
 });
+
+// Logs of earlier runs: kept for an hour, for whoever looks into a failure.
+for (const name of readdirSync(TEST_FOLDER).filter((one) => /^server-\d+\.log$/.test(one))) {
+  const log = path.join(TEST_FOLDER, name);
+  if (Date.now() - statSync(log).mtimeMs > 3_600_000) rmSync(log, { force: true });
+}
 
 process.on("exit", () => rmSync(folder, { recursive: true, force: true }));
 const { start } = await import("./lib/start-server.mjs");

@@ -1,6 +1,7 @@
 import { createHash } from "node:crypto";
 import { existsSync, mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import path from "node:path";
+import { withLock } from "./lock.mjs";
 import { ROOT, run } from "./processes.mjs";
 
 const SOURCES = ["app", "public"];
@@ -38,11 +39,16 @@ export function buildPlaces(folder = "") {
   return {
     build: path.join(ROOT, folder, "build"),
     worker: path.join(ROOT, folder, ".worker"),
+    lock: path.join(ROOT, ".data/run", `building${folder}`),
   };
 }
 
 /** Builds the application and its computing thread unless the sources are those of the last build. */
-export async function needBuild(places, say) {
+export function needBuild(places, say) {
+  return withLock(places.lock, () => buildIfNeeded(places, say));
+}
+
+async function buildIfNeeded(places, say) {
   const stamp = path.join(places.build, ".sources");
   const wanted = sourceHash();
   if (existsSync(stamp) && existsSync(places.worker) && readFileSync(stamp, "utf8") === wanted) return;
