@@ -1,15 +1,24 @@
-import { IntakeRejection } from "./intake/reject.ts";
+// One state machine and nothing else, longer than a file should be: its states share what waits for the next line.
+// What a line means is in xyz/atom-line, count-line and frame-builder, where a search ends in xyz/restart-search.
 import type { IntakeMessage } from "./intake/report.ts";
 import { decodeText, Utf8Stream } from "./text/decode.ts";
-import { quoteFound } from "./text/escape.ts";
 import { LineBuffer, PIECE_BYTES } from "./text/lines.ts";
-import { looksLikeAtom, readAtomLine } from "./xyz/atom-line.ts";
+import { readAtomLine } from "./xyz/atom-line.ts";
 import { type CountLine, readCountLine } from "./xyz/count-line.ts";
 import { type FramePlace, finishFrame } from "./xyz/finish-frame.ts";
+import { brokenOff, cutOff, surplus } from "./xyz/form-faults.ts";
 import { NOTE_LENGTH, type XyzFrame } from "./xyz/frame.ts";
 import { type BuilderFault, FrameBuilder, type TextLine } from "./xyz/frame-builder.ts";
 import { MAX_COLUMNS, PLAIN_LAYOUT } from "./xyz/layout.ts";
 import { readPlainAtoms } from "./xyz/plain-atoms.ts";
+import {
+  type Place,
+  refuseAtoms,
+  refuseColumns,
+  refuseEmpty,
+  refuseFirstLine,
+  refuseFrames,
+} from "./xyz/refusals.ts";
 import { type Restart, RestartSearch } from "./xyz/restart-search.ts";
 
 /** Stored with every ensemble: the same bytes and answers read by the same version give the same frames. */
@@ -183,8 +192,8 @@ export class XyzReader {
     const first = this.#waiting === null && this.frames === 0;
     const count = readCountLine(line.text, first || this.#anyCountNote);
     if (count) this.#begin(count, line);
-    else if (this.#waiting === null) this.#refuseFirstLine(line);
-    else if (this.#continues(line, this.#waiting)) this.#surplus(line);
+    else if (this.#waiting === null) refuseFirstLine(this.#file, line.number, line.text);
+    else if (this.#continues(line, this.#waiting)) this.#surplus(this.#waiting, line);
     else this.#beginNote(line);
   }
 
@@ -199,7 +208,7 @@ export class XyzReader {
     if (this.#blank > 0) this.#remarkBlank();
     this.#flush(line.number);
     if (count.note !== null && !readCountLine(line.text, false)) this.#anyCountNote = true;
-    this.#checkLimits(count, line);
+    this.#checkLimits(count, line.number);
     this.#builder = new FrameBuilder(count, line.number);
     this.#mode = "comment";
   }
@@ -210,43 +219,19 @@ export class XyzReader {
     this.#blank = 0;
   }
 
-  #checkLimits(count: CountLine, line: TextLine): void {
-    const limits = this.#limits;
-    const number = this.#number();
-    if (number > limits.frames) {
-      throw new IntakeRejection({
-        code: "G11",
-        file: this.#file,
-        line: line.number,
-        frame: number,
-        message: `The limit is ${thousands(limits.frames)} frames, and frame ${thousands(number)} begins here.`,
-        hint: "Split the file, or narrow the energy window before the upload.",
-      });
-    }
-    if (count.count <= limits.atoms) return;
-    throw new IntakeRejection({
-      code: "G11",
-      file: this.#file,
-      line: line.number,
-      frame: number,
-      found: quoteFound(count.text),
-      message: `The limit is ${thousands(limits.atoms)} atoms a frame, and this frame announces more.`,
-      hint: "Take solvent or surroundings out before the upload.",
-    });
+  #checkLimits(count: CountLine, line: number): void {
+    const place = this.#place(line);
+    if (place.frame > this.#limits.frames) refuseFrames(place, this.#limits.frames);
+    if (count.count > this.#limits.atoms) refuseAtoms(place, this.#limits.atoms, count.text);
   }
 
-  #refuseFirstLine(line: TextLine): never {
-    const atoms = looksLikeAtom(line.text, PLAIN_LAYOUT);
-    throw new IntakeRejection({
-      code: "X03",
-      file: this.#file,
-      line: line.number,
-      found: quoteFound(line.text.trim()),
-      message: `Line ${line.number} should hold the atom count.`,
-      hint: atoms
-        ? "These look like atoms without a header: put a line with their count and a comment line before them."
-        : "XYZ begins with a line that holds the number of atoms and nothing else.",
-    });
+  #checkColumns(builder: FrameBuilder, line: number): void {
+    const columns = Math.max(builder.layout?.columns ?? 0, builder.extra + 4);
+    if (columns > MAX_COLUMNS) refuseColumns(this.#place(line), columns);
+  }
+
+  #place(line: number): Place {
+    return { file: this.#file, line, frame: this.#number() };
   }
 
   // --- inside of a frame --------------------------------------------------------------------------
@@ -254,23 +239,9 @@ export class XyzReader {
   #takeComment(line: TextLine): void {
     const builder = this.#builder!;
     builder.takeComment(line);
-    this.#checkColumns(builder, line);
+    this.#checkColumns(builder, line.number);
     this.#mode = "atoms";
     if (builder.complete) this.#completed(builder);
-  }
-
-  #checkColumns(builder: FrameBuilder, line: TextLine): void {
-    const columns = Math.max(builder.layout?.columns ?? 0, builder.extra + 4);
-    if (columns <= MAX_COLUMNS) return;
-    throw new IntakeRejection({
-      code: "G11",
-      file: this.#file,
-      line: line.number,
-      frame: this.#number(),
-      found: String(columns),
-      message: `The limit is ${thousands(MAX_COLUMNS)} columns a line, and this file has more.`,
-      hint: "Leave out what is not needed, or bring it as a table.",
-    });
   }
 
   #takeAtom(line: TextLine): void {
@@ -279,12 +250,12 @@ export class XyzReader {
       this.#breakOff(builder, line);
       return;
     }
-    this.#checkColumns(builder, line);
+    this.#checkColumns(builder, line.number);
     if (builder.complete) this.#completed(builder);
   }
 
   #completed(builder: FrameBuilder): void {
-    this.#checkColumns(builder, { text: "", number: builder.line + 2 });
+    this.#checkColumns(builder, builder.line + 2);
     this.#waiting = builder;
     this.#builder = null;
     this.#blank = 0;
@@ -294,40 +265,14 @@ export class XyzReader {
   // --- broken ranges and notes --------------------------------------------------------------------
 
   #breakOff(builder: FrameBuilder, line: TextLine): void {
-    const then = readCountLine(line.text, false)
-      ? "the next count"
-      : line.text.trim() === ""
-        ? "a blank line"
-        : "text";
-    const missingComment = builder.commentLikeAtom
-      ? ` Line ${builder.line + 1} looks like an atom: is the comment line missing?`
-      : "";
-    this.#startBroken(builder, {
-      code: "X08",
-      reason: "unreadable",
-      line: line.number,
-      message: `Frame ${this.#number()} has ${builder.read} of its ${builder.count} atoms; then comes ${then}.`,
-      hint: `Correct the frame in the file, or leave it held.${missingComment}`,
-      ...(line.text.trim() === "" ? {} : { found: line.text.trim() }),
-    });
+    this.#startBroken(builder, brokenOff(builder, line, this.#number()));
     this.#takeSearching(line);
   }
 
-  #surplus(line: TextLine): void {
-    const builder = this.#waiting!;
+  #surplus(builder: FrameBuilder, line: TextLine): void {
     this.#waiting = null;
-    this.#startBroken(builder, this.#surplusFault(builder, line.number));
+    this.#startBroken(builder, surplus(builder, line.number, this.#number()));
     this.#takeSearching(line);
-  }
-
-  #surplusFault(builder: FrameBuilder, line: number): BuilderFault {
-    return {
-      code: "X10",
-      reason: "unreadable",
-      line,
-      message: `Frame ${this.#number()} has more atom lines than its count of ${builder.count}.`,
-      hint: "Correct the count in the file, or leave the frame held.",
-    };
   }
 
   #startBroken(builder: FrameBuilder, fault: BuilderFault): void {
@@ -339,6 +284,11 @@ export class XyzReader {
       need: "whole",
       anyCountNote: this.#anyCountNote,
     });
+  }
+
+  /** A frame found complete whose surplus lines have passed already. */
+  #startOverrun(builder: FrameBuilder): void {
+    this.#startBroken(builder, surplus(builder, builder.line + builder.count + 2, this.#number()));
   }
 
   #beginNote(line: TextLine): void {
@@ -365,10 +315,10 @@ export class XyzReader {
     const { builder } = found;
     this.#search = null;
     this.#flush(builder.line);
-    this.#checkLimits(builder.countLine, { text: "", number: builder.line });
-    this.#checkColumns(builder, line);
+    this.#checkLimits(builder.countLine, builder.line);
+    this.#checkColumns(builder, line.number);
     if (found.overrun) {
-      this.#startBroken(builder, this.#surplusFault(builder, builder.line + builder.count + 2));
+      this.#startOverrun(builder);
     } else if (builder.complete) this.#completed(builder);
     else {
       this.#builder = builder;
@@ -407,7 +357,8 @@ export class XyzReader {
   }
 
   #emit(builder: FrameBuilder, rest: Pick<FramePlace, "lineCount" | "fault" | "noteLines">): void {
-    const elements = this.#shareElements(builder.elements);
+    const { elements: own, fault } = builder;
+    const elements = fault || rest.fault ? own : this.#shareElements(own);
     const frame = finishFrame(builder, { file: this.#file, number: this.#number(), elements, ...rest });
     this.frames += 1;
     if (frame.problem) this.held += 1;
@@ -430,40 +381,17 @@ export class XyzReader {
     if (found) {
       this.#flush(found.builder.line);
       if (found.overrun) {
-        this.#startBroken(
-          found.builder,
-          this.#surplusFault(found.builder, found.builder.line + found.builder.count + 2),
-        );
+        this.#startOverrun(found.builder);
       } else this.#waiting = found.builder;
     }
     this.#flush(next);
-    if (this.#builder) this.#cutOff(this.#builder, next);
-    if (this.frames > 0) return;
-    throw new IntakeRejection({
-      code: "G06",
-      file: this.#file,
-      message: "The file has no frames.",
-      hint: "XYZ begins with a line that holds the number of atoms.",
-    });
+    const cut = this.#builder;
+    if (cut) {
+      const fault = cutOff(cut, this.#number());
+      this.#emit(cut, { lineCount: next - cut.line, fault, noteLines: null });
+    }
+    if (this.frames === 0) refuseEmpty(this.#file);
   }
-
-  #cutOff(builder: FrameBuilder, next: number): void {
-    const fault: BuilderFault | null =
-      builder.count === 0
-        ? null
-        : {
-            code: "X09",
-            reason: "unreadable",
-            line: builder.line,
-            message: `Frame ${this.#number()} has ${builder.read} of its ${builder.count} atoms; then the file ends.`,
-            hint: "The file was cut: copy it again, or leave the frame held.",
-          };
-    this.#emit(builder, { lineCount: next - builder.line, fault, noteLines: null });
-  }
-}
-
-function thousands(value: number): string {
-  return value.toLocaleString("en-GB");
 }
 
 function sameBytes(a: Uint8Array, b: Uint8Array): boolean {

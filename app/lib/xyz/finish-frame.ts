@@ -133,8 +133,11 @@ function checkWhole(builder: FrameBuilder, cell: Cell | null): BuilderFault | nu
   return checkCell(builder, cell) ?? checkUnit(builder);
 }
 
+/** The word by itself: `e*bohr` and `hartree/bohr` are units of something else. */
+const NAMES_BOHR = /(?<![\w*·/^-])bohrs?(?![\w*·/^-])/i;
+
 function checkUnit(builder: FrameBuilder): BuilderFault | null {
-  const word = [builder.countLine.note ?? "", builder.comment ?? ""].some((text) => /\bbohrs?\b/i.test(text));
+  const word = [builder.countLine.note ?? "", builder.comment ?? ""].some((text) => NAMES_BOHR.test(text));
   if (!word && !looksLikeBohr(builder.elements, builder.positions)) return null;
   return {
     code: "X27",
