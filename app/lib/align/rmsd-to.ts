@@ -1,5 +1,6 @@
 import type { FrameBlock } from "../structure.ts";
-import { type SymmetryPlan, writeShape } from "./plan.ts";
+import type { SymmetryPlan } from "./plan.ts";
+import { writeShape } from "./shape.ts";
 import { SymmetricRmsd } from "./symmetric-rmsd.ts";
 
 export interface RmsdsTo {

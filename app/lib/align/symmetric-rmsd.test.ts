@@ -30,7 +30,8 @@ import { type AtomSet, type Graph, makeGraph, selectAtoms } from "../structure.t
 import { CosetTree } from "./coset-tree.ts";
 import { largestRoot } from "./kernel.ts";
 import { LocalBound } from "./local-bound.ts";
-import { distancesExceed, makePlan, type SymmetryPlan, writeShape } from "./plan.ts";
+import { makePlan, type SymmetryPlan } from "./plan.ts";
+import { distancesExceed, writeShape } from "./shape.ts";
 import { SymmetricRmsd } from "./symmetric-rmsd.ts";
 
 function shapeOf(plan: SymmetryPlan, points: Points): Float64Array {

@@ -1,7 +1,8 @@
 import { CosetTree } from "./coset-tree.ts";
 import { alignedRmsd, largestRoot } from "./kernel.ts";
 import { LocalBound } from "./local-bound.ts";
-import { distancesExceed, type SymmetryPlan } from "./plan.ts";
+import type { SymmetryPlan } from "./plan.ts";
+import { distancesExceed } from "./shape.ts";
 
 /** Nodes of the search tree that one comparison may look at before its answer counts as a bound from above. */
 export const DEFAULT_NODE_LIMIT = 200_000;

@@ -11,7 +11,8 @@ import {
 import { c60, chain, cubane, plainGraph, ring, withHydrogens } from "../../../tests/factories/graphs.ts";
 import { type Points, pack } from "../../../tests/factories/yardstick.ts";
 import { type Graph, makeGraph } from "../structure.ts";
-import { makePlan, writeShape } from "./plan.ts";
+import { makePlan } from "./plan.ts";
+import { writeShape } from "./shape.ts";
 import { SymmetryNumber } from "./symmetry-number.ts";
 
 function symmetryNumber(graph: Graph, points: Points, nodeLimit?: number): number | null {

@@ -8,7 +8,8 @@ import {
   type ReferenceSet,
   readReference,
 } from "../../../tests/factories/reference.ts";
-import { makePlan, type SymmetryPlan, writeShape } from "../align/plan.ts";
+import { makePlan, type SymmetryPlan } from "../align/plan.ts";
+import { writeShape } from "../align/shape.ts";
 import { SymmetricRmsd } from "../align/symmetric-rmsd.ts";
 import type { AtomSet } from "../structure.ts";
 import { weigh } from "../thermo/boltzmann.ts";

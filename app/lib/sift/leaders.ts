@@ -1,11 +1,5 @@
-import {
-  profileLength,
-  profilesExceed,
-  type SymmetryPlan,
-  squareLimit,
-  writeProfile,
-  writeShape,
-} from "../align/plan.ts";
+import type { SymmetryPlan } from "../align/plan.ts";
+import { profileLength, profilesExceed, squareLimit, writeProfile, writeShape } from "../align/shape.ts";
 import { SymmetricRmsd } from "../align/symmetric-rmsd.ts";
 import { SymmetryNumber } from "../align/symmetry-number.ts";
 import type { FrameBlock } from "../structure.ts";

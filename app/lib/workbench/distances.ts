@@ -1,4 +1,5 @@
-import { makePlan, type SymmetryPlan, writeShape } from "../align/plan.ts";
+import { makePlan, type SymmetryPlan } from "../align/plan.ts";
+import { writeShape } from "../align/shape.ts";
 import { SymmetricRmsd } from "../align/symmetric-rmsd.ts";
 import type { AtomSet, Graph } from "../structure.ts";
 
