@@ -18,15 +18,19 @@ export function loadSettings() {
   if (existsSync(file)) process.loadEnvFile(file);
 }
 
-/** Refuses a port that somebody listens on, before anything is done for it. */
+/** The words for a port that somebody listens on. */
+export function portTaken(port, host) {
+  return new StartError(
+    `Port ${port} on ${host} is taken, perhaps by another Lowlying. Stop that, or choose another port: PORT=${port + 1} npm start`,
+  );
+}
+
+/** Refuses a taken port before anything is done for it. */
 export async function needPort() {
   const port = Number(process.env.PORT || 3000);
   const host = process.env.HOST || "127.0.0.1";
-  if (Number.isInteger(port) && port > 0 && port < 65536 && !(await portIsFree(port, host))) {
-    throw new StartError(
-      `Port ${port} on ${host} is taken, perhaps by another Lowlying. Stop that, or choose another port: PORT=${port + 1} npm start`,
-    );
-  }
+  const valid = Number.isInteger(port) && port > 0 && port < 65536;
+  if (valid && !(await portIsFree(port, host))) throw portTaken(port, host);
 }
 
 export function dataFolder() {

@@ -2,7 +2,7 @@ import { readFileSync } from "node:fs";
 import path from "node:path";
 import { pathToFileURL } from "node:url";
 import { buildPlaces, needBuild } from "./build.mjs";
-import { loadSettings, needPort, prepare } from "./prepare.mjs";
+import { loadSettings, needPort, portTaken, prepare } from "./prepare.mjs";
 import { endRunning, StartError } from "./processes.mjs";
 import { makeServer } from "./serve.mjs";
 
@@ -56,7 +56,9 @@ async function main() {
     handle: application.makeHandler(build, process.env.NODE_ENV),
     staticFolder: path.join(places.build, "client"),
   });
-  await state.http.listen(PORT, HOST);
+  await state.http.listen(PORT, HOST).catch((error) => {
+    throw error.code === "EADDRINUSE" ? portTaken(PORT, HOST) : error;
+  });
   state.watch = database?.keepAlive(application.log);
   const { version } = JSON.parse(readFileSync("package.json", "utf8"));
   say(`Lowlying ${version} is ready. Ctrl-C stops it.`);
