@@ -4,4 +4,4 @@ import type { Route } from "./+types/layout";
 export const middleware: Route.MiddlewareFunction[] = [apiTokenMiddleware];
 
 /** Nothing stands at `/api/v1` itself. */
-export { loader } from "./not-found";
+export { action, loader } from "./not-found";
