@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { formatCount, plural } from "../format.ts";
 
 /**
  * What the logbook can hold: a closed union, so that every old row still parses and has a sentence.
@@ -86,9 +87,6 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
 export type LogbookEntry = z.infer<typeof logbookEntrySchema>;
 export type LogbookType = LogbookEntry["type"];
 
-const plural = (n: number, one: string, many = `${one}s`) =>
-  `${n.toLocaleString("en-US")} ${n === 1 ? one : many}`;
-
 const NONE = "open";
 
 function answerWords(a: z.infer<typeof answers>): string {
@@ -96,8 +94,8 @@ function answerWords(a: z.infer<typeof answers>): string {
 }
 
 function countWords(d: { frames: number; accepted: number; remarked: number; held: number }): string {
-  const remarked = d.remarked > 0 ? `, ${d.remarked.toLocaleString("en-US")} of them with a remark` : "";
-  return `${plural(d.frames, "frame")}: ${d.accepted.toLocaleString("en-US")} accepted${remarked}, ${d.held.toLocaleString("en-US")} held`;
+  const remarked = d.remarked > 0 ? `, ${formatCount(d.remarked)} of them with a remark` : "";
+  return `${plural(d.frames, "frame")}: ${formatCount(d.accepted)} accepted${remarked}, ${formatCount(d.held)} held`;
 }
 
 /**

@@ -2,6 +2,7 @@ import { and, eq, inArray } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { ensembles, frames } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { formatCount } from "../../lib/format.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { loadPositions } from "./load-positions.server.ts";
 
@@ -40,7 +41,7 @@ export async function loadCoordinates(options: {
   const atoms = rows[0]?.atoms ?? 0;
   if (options.frames.length === 0) throw invalid("Name the frames, such as frames=1,5,9.");
   if (options.frames.length * atoms * 3 > MOST_DOUBLES) {
-    const most = Math.floor(MOST_DOUBLES / (3 * atoms)).toLocaleString("en-US");
+    const most = formatCount(Math.floor(MOST_DOUBLES / (3 * atoms)));
     throw new DomainError("too-large", "Too many frames", `Ask for at most ${most} frames at once.`);
   }
   const known = await indexByFrame(ensembleId, options.frames);

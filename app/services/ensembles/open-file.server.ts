@@ -1,4 +1,5 @@
 import { DomainError } from "../../lib/errors.ts";
+import { formatBytes } from "../../lib/format.ts";
 import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage } from "../../lib/intake/report.ts";
 import { GzipError, looksLikeGzip, unpackGzip } from "./unpack-gzip.server.ts";
@@ -11,11 +12,7 @@ export interface OpenedFile {
 
 /** Refused as a whole, since one more byte would pass the limit (413). */
 export function tooManyBytes(file: string, limit: number): DomainError {
-  const size =
-    limit >= 2 ** 20
-      ? `${(limit / 2 ** 20).toLocaleString("en-US", { maximumFractionDigits: 1 })} MB`
-      : `${limit.toLocaleString("en-US")} bytes`;
-  const message = `${file} is larger than the limit of ${size} (unpacked). Narrow the energy window or split the file.`;
+  const message = `${file} is larger than the limit of ${formatBytes(limit)} (unpacked). Narrow the energy window or split the file.`;
   return new DomainError("too-large", "The file is too large", message, { faults: [{ file, message }] });
 }
 

@@ -5,6 +5,7 @@ import { newId } from "../../db/new-id.server.ts";
 import { ensembles, frameBlocks, frames } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { DomainError, type Fault } from "../../lib/errors.ts";
+import { formatCount } from "../../lib/format.ts";
 import { type Classification, FrameClassifier } from "../../lib/intake/classify.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
 import { formatMessage } from "../../lib/intake/format-message.ts";
@@ -309,7 +310,7 @@ export class Reading {
     const detail =
       this.frames === 1
         ? `The only frame cannot be used. ${first}`
-        : `None of the ${this.frames.toLocaleString("en-US")} frames can be used. The first: ${first}`;
+        : `None of the ${formatCount(this.frames)} frames can be used. The first: ${first}`;
     return new DomainError("invalid", "No frame can be used", detail, { faults });
   }
 

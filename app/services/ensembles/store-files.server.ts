@@ -3,6 +3,7 @@ import { db, type Queryable, type Transaction } from "../../db/client.server.ts"
 import { ensembleFiles, sources } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { trimmed } from "../../lib/format.ts";
 import { SourceWriter, type WrittenSource } from "./source-writer.server.ts";
 
 /** Bytes that a team keeps, those on their way in too. */
@@ -15,7 +16,7 @@ async function keptBytes(teamId: string): Promise<number> {
 }
 
 function overQuota(file: string): DomainError {
-  const limit = `${(env().TEAM_QUOTA_BYTES / 1e9).toLocaleString("en-US", { maximumFractionDigits: 1 })} GB`;
+  const limit = `${trimmed(env().TEAM_QUOTA_BYTES / 1e9, 1)} GB`;
   const message = `This team's files would take more than its ${limit}. Delete ensembles that nobody needs, or ask for more.`;
   return new DomainError("too-large", "The team's space is full", message, { faults: [{ file, message }] });
 }

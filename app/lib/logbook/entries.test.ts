@@ -1,0 +1,91 @@
+import { describe, expect, it } from "vitest";
+import { describeEntry, type LogbookEntry, logbookEntrySchema } from "./entries.ts";
+
+const counts = { frames: 1_200, accepted: 1_197, remarked: 5, held: 3 };
+const open = { energyUnit: null, energyFrom: null, level: null };
+const recipe = {
+  levelName: "MMFF94",
+  window: 3,
+  energyTolerance: null,
+  rmsdTolerance: 0.2,
+  atoms: "heavy+polarH",
+  mirror: "merge",
+};
+
+/** Rows as they were written once: they must go on parsing and having a sentence. */
+const WRITTEN: [LogbookEntry, string, string | null][] = [
+  [
+    {
+      type: "intake",
+      data: {
+        name: "A",
+        files: [{ name: "a.xyz", sha256: "00", bytes: 9 }],
+        answers: open,
+        questions: 2,
+        ...counts,
+      },
+    },
+    "Read a.xyz",
+    "1,200 frames: 1,197 accepted, 5 of them with a remark, 3 held; 2 questions open",
+  ],
+  [
+    {
+      type: "reread",
+      data: {
+        before: open,
+        after: { energyUnit: "eV", energyFrom: "key:E", level: "M" },
+        questions: 0,
+        ...counts,
+      },
+    },
+    "Read the files again with other answers: level M, unit eV, energy from key:E",
+    "before: level open, unit open, energy from open; 1,200 frames: 1,197 accepted, 5 of them with a remark, 3 held",
+  ],
+  [
+    {
+      type: "answer",
+      data: { question: "energy-unit", text: "In which unit?", option: "eV", optionText: "eV", released: 1 },
+    },
+    "Answered: eV",
+    "In which unit? 1 frame released.",
+  ],
+  [{ type: "hold", data: { frame: 4, reason: "no minimum" } }, "Held frame 4", "no minimum"],
+  [
+    { type: "release", data: { frame: 4, reason: "it is one", heldFor: "by-hand" } },
+    "Released frame 4",
+    "it is one",
+  ],
+  [
+    { type: "release-refused", data: { frame: 9, reason: "please", why: "it is another molecule." } },
+    "Asked to release frame 9; refused",
+    "it is another molecule.",
+  ],
+  [
+    { type: "sift", data: { siftId: "a", automatic: true, recipe } },
+    "Sift begun after intake",
+    "level MMFF94, RMSD 0.2 Å, no energy tolerance, window 3 kcal/mol, heavy atoms and polar hydrogens, mirror images merged",
+  ],
+  [{ type: "sift", data: { siftId: "a", automatic: false, recipe: { other: 1 } } }, "Asked for a sift", null],
+  [
+    {
+      type: "token-made",
+      data: { prefix: "lowl_b41e", name: "Night", scope: "add", endsAt: "2027-01-31T00:00:00Z" },
+    },
+    "Made token lowl_b41e…",
+    "Night; add; ends 2027-01-31",
+  ],
+  [{ type: "renamed", data: { before: "A", after: "B" } }, "Renamed to B", "before: A"],
+  [{ type: "export", data: { siftId: "a", format: "xyz" } }, "Took the distinct set as XYZ", null],
+  [{ type: "sign-in", data: {} }, "Signed in", null],
+];
+
+describe("an entry of the logbook", () => {
+  it.each(WRITTEN)("%j", (entry, text, detail) => {
+    const read = logbookEntrySchema.parse(JSON.parse(JSON.stringify(entry)));
+    expect(describeEntry(read)).toEqual({ text, detail });
+  });
+
+  it("of an unknown kind does not parse, so that nothing is shown that nobody wrote", () => {
+    expect(logbookEntrySchema.safeParse({ type: "exploded", data: {} }).success).toBe(false);
+  });
+});
