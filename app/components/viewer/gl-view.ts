@@ -114,6 +114,7 @@ export function openGlView(library: Library, host: HTMLElement, ground: string, 
     undo();
     throw new Error("no WebGL 2");
   }
+  canvas.removeAttribute("id"); // the library writes "undefined" there
   context.canvas.addEventListener("webglcontextlost", onLost);
   viewer.setCameraParameters({ fov: FIELD, z: CAMERA_HEIGHT });
   const kit = kitOf(viewer, internals);

@@ -66,7 +66,7 @@ export default function ViewerCanvas({ scene, stage, camera, onReady, onFail }: 
     if (last?.view !== view) told.current.onReady(view.canvas);
   }, [view, scene, stage, camera, palette]);
 
-  return <div ref={host} className="absolute inset-0 print:hidden" />;
+  return <div ref={host} aria-hidden="true" className="absolute inset-0 print:hidden" />;
 }
 
 /** The colours of the tokens, read again when the theme changes by the system or by hand. */

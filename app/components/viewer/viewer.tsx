@@ -126,6 +126,7 @@ export function Viewer(props: ViewerProps) {
           ) : null}
           {canvas.element ? (
             <svg
+              data-marks=""
               aria-hidden="true"
               width={stage.width}
               height={stage.height}
