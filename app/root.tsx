@@ -10,6 +10,7 @@ import {
   useRouteLoaderData,
 } from "react-router";
 import { ErrorPage } from "~/components/layout/closed-ways";
+import { fontLinks } from "~/components/layout/font-links";
 import type { ShellData } from "~/components/layout/shell-data";
 import { readThemeCookie } from "~/lib/theme";
 import type { Route } from "./+types/root";
@@ -55,6 +56,7 @@ export const meta: Route.MetaFunction = () => [
 
 export const links: Route.LinksFunction = () => [
   { rel: "icon", href: "/favicon.svg", type: "image/svg+xml" },
+  ...fontLinks,
 ];
 
 export function Layout({ children }: { children: ReactNode }) {
