@@ -87,7 +87,7 @@ export interface FrameView {
 }
 
 export interface IntakeView {
-  /** One character a frame in file order: a accepted, r remarked, h held. */
+  /** One character a frame in file order: a accepted, r remarked, h held, w held for nothing but an open question. */
   strip: string;
   /** Frames that are held or remarked, up to 500 of each. */
   held: FrameView[];

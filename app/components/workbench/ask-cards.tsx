@@ -1,6 +1,6 @@
 import { useState } from "react";
 import { href, useFetcher } from "react-router";
-import { SubmitButton } from "~/components/ui/button";
+import { Button, SubmitButton } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
 import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
 import { fixed, formatEnergy, withUnit } from "~/lib/format";
@@ -111,7 +111,9 @@ function footWords(question: IntakeQuestion): string {
   return "One rule for all frames.";
 }
 
+/** Any name will do; names that the file or the team already use are one click away. */
 function LevelName({ question, proposed }: { question: IntakeQuestion; proposed: Option | null }) {
+  const [name, setName] = useState(proposed?.text ?? "");
   return (
     <div className="max-w-read px-4 py-4 sm:px-6">
       <TextField
@@ -121,15 +123,21 @@ function LevelName({ question, proposed }: { question: IntakeQuestion; proposed:
         maxLength={120}
         autoComplete="off"
         spellCheck={false}
-        defaultValue={proposed?.text ?? ""}
+        value={name}
+        onChange={(event) => setName(event.currentTarget.value)}
         placeholder="for example B3LYP/6-31G(d)"
-        help={
-          proposed?.detail ??
-          (question.options.length > 0
-            ? `Also there: ${question.options.map((option) => option.text).join(", ")}.`
-            : "As the trade writes it; tables, figures and exports carry it.")
-        }
+        help={proposed?.detail ?? "As the trade writes it; tables, figures and exports carry it."}
       />
+      {question.options.length > 0 ? (
+        <p className="mt-3 flex flex-wrap items-center gap-2 text-xs text-ink-3">
+          Already in use:
+          {question.options.map((option) => (
+            <Button key={option.id} size="sm" onClick={() => setName(option.text)}>
+              {option.text}
+            </Button>
+          ))}
+        </p>
+      ) : null}
     </div>
   );
 }

@@ -20,7 +20,7 @@ import { useWorkbench } from "./workbench-context";
 
 /** Reducing the accepted frames to the shapes that differ, by a recipe that can be moved. */
 export function DistinctSetSection() {
-  const { ensemble, sift, result, change } = useWorkbench();
+  const { ensemble, sift, result, state, change } = useWorkbench();
   // One step of history for one gesture: while a thumb is held the later results replace the first.
   const gesture = useRef<"open" | "fresh">("fresh");
   const [before, setBefore] = useState<{ id: string; kept: number; tolerance: number } | null>(null);
@@ -31,12 +31,15 @@ export function DistinctSetSection() {
     change({ sift: id }, { replace: gesture.current === "open" });
     gesture.current = "open";
   });
+  // biome-ignore lint/correctness/useExhaustiveDependencies: a sift never changes its recipe; read again it is the same one
   const request = useMemo<SiftRequest>(
     () => (sift ? requestOf(sift.recipe) : { level: ensemble.levels[0]?.id ?? null }),
-    [sift, ensemble.levels],
+    [sift?.id, ensemble.levels[0]?.id],
   );
   const onAsk = (next: SiftRequest, settled: boolean) => {
     clearError();
+    // An address without a sift means the newest one, which the answer will be: name what is shown, so that "back" finds it.
+    if (sift !== null && result !== null && state.sift === null) change({ sift: sift.id }, { replace: true });
     void ask(next).finally(() => {
       if (settled) gesture.current = "fresh";
     });

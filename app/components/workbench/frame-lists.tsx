@@ -12,19 +12,24 @@ import { useWorkbench } from "./workbench-context";
 const FIRST_GROUPS = 10;
 
 /** What is held, why, where, and what can be done about it. */
-export function HeldList({ frames }: { frames: readonly FrameView[] }) {
+export function HeldList({ frames, waiting }: { frames: readonly FrameView[]; waiting: number }) {
   const { ensemble } = useWorkbench();
+  const waits = (frame: FrameView) => frame.holdReason === "waits-for-answer" && ensemble.openQuestions > 0;
+  // What a person can look into comes before the crowd that only waits.
+  const ordered = [...frames.filter((frame) => !waits(frame)), ...frames.filter(waits)];
   return (
     <FrameList
       title="Held"
-      badge={<Badge tone="held">{formatCount(ensemble.held)}</Badge>}
+      badge={<Badge tone="held">{formatCount(ensemble.held - waiting)}</Badge>}
       lead={
-        ensemble.held === 0
-          ? "No frame is held."
+        ensemble.held - waiting === 0
+          ? waiting > 0
+            ? "No frame is held for another reason than an open question."
+            : "No frame is held."
           : "Kept, and left out of every computation until somebody releases them."
       }
       edge="border-held-edge"
-      frames={frames}
+      frames={ordered}
       total={ensemble.held}
       tool={
         ensemble.mayCompute && ensemble.openQuestions === 0 ? (

@@ -6,6 +6,7 @@ import { frameStrip, type StripTick } from "~/lib/workbench/frame-strip";
 export function FrameStripFigure({ states }: { states: string }) {
   const { perTick, ticks } = useMemo(() => frameStrip(states), [states]);
   const held = ticks.reduce((sum, tick) => sum + tick.held, 0);
+  const waiting = ticks.reduce((sum, tick) => sum + tick.waiting, 0);
   const remarked = ticks.reduce((sum, tick) => sum + tick.remarked, 0);
   return (
     <figure className="mt-6">
@@ -17,14 +18,14 @@ export function FrameStripFigure({ states }: { states: string }) {
           ) : null}
         </h3>
         <span aria-hidden="true" className="flex gap-4 text-xs text-ink-3">
-          <Legend className="h-3 w-px bg-ink-3">accepted</Legend>
-          <Legend className="h-3 w-[3px] bg-remark-edge">with a remark</Legend>
+          <Legend className="h-3 w-px bg-ink-3">{waiting > 0 ? "waits for an answer" : "accepted"}</Legend>
+          {waiting > 0 ? null : <Legend className="h-3 w-[3px] bg-remark-edge">with a remark</Legend>}
           <Legend className="h-3 w-[9px] border-[1.5px] border-held-edge bg-held-ground">held</Legend>
         </span>
       </figcaption>
       <div
         role="img"
-        aria-label={`${plural(states.length, "frame")} in file order, ${formatCount(remarked)} with a remark, ${formatCount(held)} held`}
+        aria-label={`${plural(states.length, "frame")} in file order, ${waiting > 0 ? `${formatCount(waiting)} wait for an answer` : `${formatCount(remarked)} with a remark`}, ${formatCount(held)} held`}
         className="grid grid-cols-[repeat(50,minmax(0,1fr))] gap-y-2 sm:grid-cols-[repeat(100,minmax(0,1fr))]"
       >
         {ticks.map((tick) => (
@@ -46,7 +47,7 @@ function Legend({ className, children }: { className: string; children: string }
 
 function Tick({ tick }: { tick: StripTick }) {
   const frames = tick.first === tick.last ? `frame ${tick.first}` : `frames ${tick.first} to ${tick.last}`;
-  if (tick.state === "accepted") {
+  if (tick.state === "accepted" || tick.state === "waiting") {
     return <i className="mx-auto mt-1 block h-3 w-px bg-ink-3" title={frames} />;
   }
   if (tick.state === "remarked") {

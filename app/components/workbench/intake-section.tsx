@@ -47,7 +47,7 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
         <AskCards ensembleId={ensemble.id} questions={intake.questions} mayAnswer={ensemble.mayCompute} />
       ) : null}
       <div className="mt-9 grid items-start gap-x-10 gap-y-8 xl:grid-cols-2">
-        <HeldList frames={intake.held} />
+        <HeldList frames={intake.held} waiting={intake.waiting} />
         <RemarkedList frames={intake.remarked} />
       </div>
       <FileMessages messages={intake.messages} files={ensemble.files} />

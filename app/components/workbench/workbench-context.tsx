@@ -72,11 +72,14 @@ const NO_ROLES: ReadonlyMap<number, FrameRole> = new Map();
 export function WorkbenchProvider({
   ensemble,
   sift,
+  first,
   section,
   children,
 }: {
   ensemble: EnsembleView;
   sift: SiftView | null;
+  /** Frame to show while there is no distinct set. */
+  first: number | null;
   /** Last part of the address: what a section does not show is not computed. */
   section: string;
   children: ReactNode;
@@ -159,6 +162,16 @@ export function WorkbenchProvider({
     ],
   );
   return <Context value={value}>{children}</Context>;
+}
+
+/** What the address selects of the frames that there are; the lowest conformer where it selects nothing. */
+function chosenFrames(
+  asked: readonly number[] | null,
+  lowest: number | null,
+  frames: number,
+): readonly number[] {
+  if (asked !== null) return asked.filter((frame) => frame <= frames);
+  return lowest === null ? [] : [lowest];
 }
 
 /** Coordinates that the section needs, and the distances worked out from them. */

@@ -31,7 +31,7 @@ export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchDat
   const section = pathname.split("/")[3] ?? "populations";
   const followed = useFollowedSift(sift);
   return (
-    <WorkbenchProvider ensemble={ensemble} sift={followed} section={section}>
+    <WorkbenchProvider ensemble={ensemble} sift={followed} section={section} first={firstFrame(intake)}>
       <Frame section={section} intake={intake}>
         {children}
       </Frame>
@@ -91,6 +91,12 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
       </div>
     </AppShell>
   );
+}
+
+/** The frame that the view shows while there is no distinct set: the first that is not held for good. */
+function firstFrame(intake: IntakeView): number | null {
+  const at = intake.strip.search(/[arw]/);
+  return at < 0 ? (intake.held.find((frame) => frame.showable)?.number ?? null) : at + 1;
 }
 
 /** Frame numbers of one state, from the strip. */

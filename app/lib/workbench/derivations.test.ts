@@ -407,9 +407,9 @@ describe("table", () => {
 
 describe("frame strip", () => {
   test("one tick a frame up to a thousand", () => {
-    const strip = frameStrip("arh");
+    const strip = frameStrip("arhw");
     expect(strip.perTick).toBe(1);
-    expect(strip.ticks.map((tick) => tick.state)).toEqual(["accepted", "remarked", "held"]);
+    expect(strip.ticks.map((tick) => tick.state)).toEqual(["accepted", "remarked", "held", "waiting"]);
     expect(frameStrip("a".repeat(1000)).ticks).toHaveLength(1000);
   });
 
@@ -417,7 +417,14 @@ describe("frame strip", () => {
     const strip = frameStrip(`${"a".repeat(2500)}hr${"a".repeat(2499)}`);
     expect(strip.perTick).toBe(10);
     expect(strip.ticks).toHaveLength(501);
-    expect(strip.ticks[250]).toEqual({ first: 2501, last: 2510, state: "held", remarked: 1, held: 1 });
+    expect(strip.ticks[250]).toEqual({
+      first: 2501,
+      last: 2510,
+      state: "held",
+      remarked: 1,
+      waiting: 0,
+      held: 1,
+    });
     expect(strip.ticks.at(-1)).toMatchObject({ first: 5001, last: 5001 });
     expect(frameStrip("").ticks).toEqual([]);
   });

@@ -1,4 +1,4 @@
-import { and, asc, eq } from "drizzle-orm";
+import { and, asc, eq, sql } from "drizzle-orm";
 import { z } from "zod";
 import { db, type Queryable } from "../../db/client.server.ts";
 import { frames, intakeMessages, questions } from "../../db/schema.server.ts";
@@ -6,7 +6,6 @@ import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { HoldReason, IntakeMessage, IntakeQuestion, QuestionOption } from "../../lib/intake/report.ts";
 import type { FrameView, IntakeView } from "../../lib/views.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
-import { frameStrip } from "./accepted-frames.server.ts";
 
 /** Frames of one state that the page lists; the strip shows all. */
 const LISTED = 500;
@@ -80,25 +79,27 @@ async function findFrames(ensembleId: string, state: "held" | "remarked"): Promi
   }));
 }
 
-/** Frames that are held for nothing but an open question. */
-async function countWaiting(ensembleId: string): Promise<number> {
-  const reason: HoldReason = "waits-for-answer";
-  return db.$count(
-    frames,
-    and(eq(frames.ensembleId, ensembleId), eq(frames.state, "held"), eq(frames.holdReason, reason)),
-  );
+/** The frames in file order, those that wait for an answer told apart from the held ones. */
+async function intakeStrip(ensembleId: string): Promise<string> {
+  const waits: HoldReason = "waits-for-answer";
+  const mark = sql`case when ${frames.state} = 'held' and ${frames.holdReason} = ${waits} then 'w' else left(${frames.state}, 1) end`;
+  const rows = await db
+    .select({ text: sql<string | null>`group_concat(${mark} order by ${frames.number} separator '')` })
+    .from(frames)
+    .where(eq(frames.ensembleId, ensembleId));
+  return rows[0]?.text ?? "";
 }
 
 /** The intake report of an ensemble. */
 export async function loadIntake(options: { actor: Actor; ensembleId: string }): Promise<IntakeView> {
   const { ensembleId } = await accessEnsemble(options.actor, "read", options.ensembleId);
-  const [strip, held, remarked, waiting, messages, asked] = await Promise.all([
-    frameStrip(ensembleId),
+  const [strip, held, remarked, messages, asked] = await Promise.all([
+    intakeStrip(ensembleId),
     findFrames(ensembleId, "held"),
     findFrames(ensembleId, "remarked"),
-    countWaiting(ensembleId),
     findMessages(ensembleId),
     findQuestions(ensembleId),
   ]);
+  const waiting = strip.split("w").length - 1;
   return { strip, held, remarked, waiting, messages, questions: asked };
 }
