@@ -36,7 +36,14 @@ export async function loader({ request, context }: Route.LoaderArgs): Promise<Sh
   const actor = context.get(actorContext);
   const person = await forPage(context.get(requestIdContext), () => findPerson(actor));
   return {
-    user: person === null ? null : { name: person.name, email: person.email },
+    user:
+      person === null
+        ? null
+        : {
+            name: person.name,
+            email: person.email,
+            teams: person.teams.map(({ id, name }) => ({ id, name })),
+          },
     theme: readThemeCookie(request.headers.get("cookie")),
   };
 }

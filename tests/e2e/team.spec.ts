@@ -105,6 +105,45 @@ test.describe("taking files in", () => {
     await page.waitForURL(/\/intake$/);
   });
 
+  test("warns before a page is left whose uploads would stop", async ({ page }) => {
+    await ownTeam(page);
+    // The request waits until the test lets it go.
+    let release = () => {};
+    const held = new Promise<void>((resolve) => {
+      release = resolve;
+    });
+    await page.route("**/files/upload", async (route) => {
+      await held;
+      await route.continue();
+    });
+    await files(page).setInputFiles(ENSEMBLE);
+    await expect(page.getByRole("list", { name: "Files being taken in" })).toBeVisible();
+    await page.getByRole("link", { name: "Tokens" }).click();
+    const question = page.getByRole("dialog", { name: "Files are still on their way" });
+    await expect(question).toBeVisible();
+    await expectAccessible(page);
+    await page.keyboard.press("Escape");
+    await expect(question).toBeHidden();
+    release();
+    await page.waitForURL(/\/intake$/);
+  });
+
+  test("cancels, and sends again", async ({ page }) => {
+    await ownTeam(page);
+    let hold = true;
+    await page.route("**/files/upload", async (route) => {
+      if (hold) await new Promise(() => {});
+      await route.continue();
+    });
+    await files(page).setInputFiles(ENSEMBLE);
+    const list = page.getByRole("list", { name: "Files being taken in" });
+    await list.getByRole("button", { name: "Cancel" }).press("Enter");
+    await expect(list.getByText("cancelled", { exact: true })).toBeVisible();
+    hold = false;
+    await list.getByRole("button", { name: "Try again" }).press("Enter");
+    await page.waitForURL(/\/intake$/);
+  });
+
   test("is not offered to readers", async ({ page }) => {
     await signIn(page, "reader");
     await hydrated(page);

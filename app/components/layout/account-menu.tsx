@@ -54,9 +54,11 @@ export function AccountMenu() {
           <ThemeSwitch theme={theme} />
         </div>
         <div className="border-t border-rule pt-1">
-          <Link to={href("/teams")} className={ENTRY}>
-            Your teams
-          </Link>
+          {user.teams.map((team) => (
+            <Link key={team.id} to={href("/teams/:team", { team: team.id })} className={ENTRY}>
+              <span className="truncate">Team {team.name}</span>
+            </Link>
+          ))}
           <Form method="post" action={href("/logout")}>
             <button type="submit" className={ENTRY}>
               Sign out

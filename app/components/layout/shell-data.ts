@@ -3,7 +3,7 @@ import type { Theme } from "~/lib/theme";
 
 /** What the root loader tells every page. */
 export interface ShellData {
-  user: { name: string; email: string } | null;
+  user: { name: string; email: string; teams: { id: string; name: string }[] } | null;
   theme: Theme | null;
 }
 

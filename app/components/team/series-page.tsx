@@ -1,4 +1,4 @@
-import { useState } from "react";
+import { useRef, useState } from "react";
 import { href, Link, useNavigate, useRevalidator } from "react-router";
 import { pageClass } from "~/components/layout/app-shell";
 import { ButtonLink } from "~/components/ui/button";
@@ -15,6 +15,7 @@ import type { EnsembleRow, Role } from "~/lib/views";
 import { AskSeveral } from "./ask-several";
 import { EnsembleActs } from "./ensemble-acts";
 import { EnsembleTable } from "./ensemble-table";
+import { LeaveGuard } from "./leave-guard";
 import { NewSeries } from "./new-series";
 import { SeriesFilters } from "./series-filters";
 import { TeamTabs } from "./team-tabs";
@@ -45,7 +46,7 @@ export interface SeriesPageData {
 /** A team's ensembles: finding, search, filters, table; files dropped anywhere start an intake. */
 export function SeriesPage({ data }: { data: SeriesPageData }) {
   const { team, chosen, state, mayCompute } = data;
-  const { uploads, several, setSeveral, take, send } = useIntake(data);
+  const { uploads, several, setSeveral, take, send, mayLeave } = useIntake(data);
   const remove = useDeletion(team.id);
   const over = usePageDrop(take, !mayCompute || several !== null);
   const where = `into ${chosen ? chosen.name : "the series Unsorted"}, as ${over === 1 ? "an ensemble" : "ensembles"}`;
@@ -85,6 +86,7 @@ export function SeriesPage({ data }: { data: SeriesPageData }) {
           <p className="text-xs text-ink-3">Drop files anywhere on this page to start an intake.</p>
         ) : null}
       </div>
+      <LeaveGuard underWay={uploads.underWay} mayLeave={mayLeave} />
       <DropOverlay over={over} where={where} />
       <AskSeveral files={several} onAnswer={send} onCancel={() => setSeveral(null)} key={state.series} />
     </div>
@@ -98,7 +100,10 @@ function useIntake(data: SeriesPageData) {
   const [alone, setAlone] = useState(false);
   const navigate = useNavigate();
   const revalidator = useRevalidator();
+  // The page moves on by itself before the list has noted that its one upload is over.
+  const moving = useRef(false);
   const onTaken = (taken: Taken) => {
+    moving.current = alone;
     if (alone) navigate(href("/ensembles/:id/intake", { id: taken.id }));
     else revalidator.revalidate();
   };
@@ -123,7 +128,7 @@ function useIntake(data: SeriesPageData) {
     if (together) add(files);
     else for (const file of files) add([file]);
   };
-  return { uploads, several, setSeveral, take, send };
+  return { uploads, several, setSeveral, take, send, mayLeave: () => moving.current };
 }
 
 function Ensembles({
