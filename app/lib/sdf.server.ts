@@ -1,4 +1,4 @@
-import { checkAtomCount, checkFrameCount, type FrameLimits } from "./intake/limits.ts";
+import { DEFAULT_LIMITS, type FrameLimits } from "./intake/limits.ts";
 import { IntakeRejection } from "./intake/reject.ts";
 import type { IntakeMessage } from "./intake/report.ts";
 import { type Counts, readCountsLine } from "./sdf/counts-line.ts";
@@ -18,29 +18,12 @@ import { LineBuffer, PIECE_BYTES } from "./text/lines.ts";
 import type { AtomFault } from "./xyz/atom-line.ts";
 import type { TextLine } from "./xyz/frame-builder.ts";
 import { MAX_COLUMNS } from "./xyz/layout.ts";
+import { type Place, refuseAtoms, refuseFrames } from "./xyz/refusals.ts";
+import type { XyzOptions, XyzSummary } from "./xyz.server.ts";
 
 /** Stored with every ensemble: the same bytes and answers read by the same version give the same frames. */
 export const SDF_READER_VERSION = "sdf 1";
 
-export interface SdfOptions {
-  /** File name for messages. */
-  readonly file: string;
-  /** Number of the first frame, when files before this one brought some; default 1. */
-  readonly firstNumber?: number;
-  readonly limits?: Partial<FrameLimits>;
-}
-
-/** What a file came to. */
-export interface SdfSummary {
-  readonly frames: number;
-  /** Frames with a `problem`. */
-  readonly held: number;
-  readonly lines: number;
-  /** Messages on the file as a whole; those on frames travel with the frames. */
-  readonly messages: readonly IntakeMessage[];
-}
-
-const DEFAULT_LIMITS: FrameLimits = { frames: 50_000, atoms: 1000 };
 /** Tags are counted up to so many different ones in a file (row S19). */
 const COUNTED_TAGS = 1000;
 const HEAD_LINES = 4;
@@ -87,7 +70,7 @@ export class SdfReader {
   #legacy = false;
   readonly #room: RecordRoom = { elements: new Uint8Array(0), bonds: new Int32Array(0) };
 
-  constructor(options: SdfOptions) {
+  constructor(options: XyzOptions) {
     this.#file = options.file;
     this.#first = options.firstNumber ?? 1;
     this.#limits = { ...DEFAULT_LIMITS, ...options.limits };
@@ -114,7 +97,7 @@ export class SdfReader {
     return this.#give();
   }
 
-  summary(): SdfSummary {
+  summary(): XyzSummary {
     return { frames: this.frames, held: this.held, lines: this.#lines.line, messages: this.messages };
   }
 
@@ -249,11 +232,8 @@ export class SdfReader {
       program: program ?? "",
       comment: comment ?? "",
     };
-    const place = this.#placeAt(line.number);
-    checkFrameCount(this.#limits, place);
-    if (counts?.version === "V2000") {
-      checkAtomCount(counts.atoms, line.text.slice(0, 3).trim(), this.#limits, place);
-    }
+    this.#checkFrames(line.number);
+    if (counts?.version === "V2000") this.#checkAtoms(counts.atoms, line.text.slice(0, 3).trim());
     const builder = new RecordBuilder(head, counts, line.number, this.#room);
     if (fault) builder.refuse({ ...fault, line: line.number });
     this.#remarkHead(builder, counts);
@@ -279,24 +259,31 @@ export class SdfReader {
     this.#blanks = 0;
     if (mode === "atoms") this.#properties = new PropertyLines(builder);
     if (mode === "v3000") {
-      this.#v3000 = new V3000Lines(builder, (atoms, written) =>
-        checkAtomCount(atoms, written, this.#limits, this.#placeAt(this.#lines.line)),
-      );
+      this.#v3000 = new V3000Lines(builder, (atoms, written) => this.#checkAtoms(atoms, written));
     }
   }
 
   /** No counts where they should stand: the record cannot be read, wherever it began. */
   #breakHead(line: TextLine): void {
     const first = this.#head[0]!.number;
-    checkFrameCount(this.#limits, this.#placeAt(first));
+    this.#checkFrames(first);
     const builder = new RecordBuilder({ ...NO_HEAD, line: first }, null, first, this.#room);
     const message = "The fourth line of the record should hold the counts of atoms and bonds.";
     builder.refuse({ ...misplaced("S01", message, line.text), line: line.number });
     this.#start(builder, "skip");
   }
 
-  #placeAt(line: number): { file: string; line: number; frame: number } {
+  #placeAt(line: number): Place {
     return { file: this.#file, line, frame: this.#first + this.frames };
+  }
+
+  #checkFrames(line: number): void {
+    const place = this.#placeAt(line);
+    if (place.frame > this.#limits.frames) refuseFrames(place, this.#limits.frames);
+  }
+
+  #checkAtoms(atoms: number, written: string): void {
+    if (atoms > this.#limits.atoms) refuseAtoms(this.#placeAt(this.#lines.line), this.#limits.atoms, written);
   }
 
   // --- data and ends ------------------------------------------------------------------------------
@@ -327,7 +314,7 @@ export class SdfReader {
   /** A delimiter, or the end of the file, before the counts. */
   #takeEmpty(): void {
     const first = this.#head[0]?.number ?? this.#lines.line;
-    checkFrameCount(this.#limits, this.#placeAt(first));
+    this.#checkFrames(first);
     const builder = new RecordBuilder({ ...NO_HEAD, line: first }, null, first, this.#room);
     builder.refuse({
       ...misplaced("S14", "The record ends before the counts of atoms and bonds."),
@@ -436,8 +423,8 @@ function isDelimiter(lines: LineBuffer): boolean {
  */
 export async function* readSdf(
   source: AsyncIterable<Uint8Array>,
-  options: SdfOptions,
-): AsyncGenerator<SdfFrame, SdfSummary> {
+  options: XyzOptions,
+): AsyncGenerator<SdfFrame, XyzSummary> {
   const reader = new SdfReader(options);
   for await (const chunk of source) {
     // Cut here too, so that one huge chunk does not become one huge list of frames.

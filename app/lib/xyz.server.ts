@@ -1,5 +1,6 @@
 // One state machine and nothing else, longer than a file should be: its states share what waits for the next line.
 // What a line means is in xyz/atom-line, count-line and frame-builder, where a search ends in xyz/restart-search.
+import { DEFAULT_LIMITS, type FrameLimits } from "./intake/limits.ts";
 import type { IntakeMessage } from "./intake/report.ts";
 import { decodeText, Utf8Stream } from "./text/decode.ts";
 import { LineBuffer, PIECE_BYTES } from "./text/lines.ts";
@@ -24,21 +25,12 @@ import { type Restart, RestartSearch } from "./xyz/restart-search.ts";
 /** Stored with every ensemble: the same bytes and answers read by the same version give the same frames. */
 export const XYZ_READER_VERSION = "xyz 1";
 
-export interface XyzLimits {
-  /** Highest frame number, over all files of an upload. */
-  readonly frames: number;
-  /** Atoms of one frame. */
-  readonly atoms: number;
-}
-
-export const DEFAULT_LIMITS: XyzLimits = { frames: 50_000, atoms: 1000 };
-
 export interface XyzOptions {
   /** File name for messages. */
   readonly file: string;
   /** Number of the first frame, when files before this one brought some; default 1. */
   readonly firstNumber?: number;
-  readonly limits?: Partial<XyzLimits>;
+  readonly limits?: Partial<FrameLimits>;
 }
 
 /** What a file came to. */
@@ -74,7 +66,7 @@ export class XyzReader {
 
   readonly #file: string;
   readonly #first: number;
-  readonly #limits: XyzLimits;
+  readonly #limits: FrameLimits;
   readonly #text = new Utf8Stream();
   readonly #lines: LineBuffer;
   #out: XyzFrame[] = [];

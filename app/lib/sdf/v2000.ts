@@ -1,8 +1,7 @@
 import { ATOMIC_WEIGHTS, symbolOf } from "../chem/elements.ts";
 import { plainBlanksAndMinus } from "../intake/numbers.ts";
-import { type AtomFault, makeAtom } from "../xyz/atom-line.ts";
+import type { AtomFault } from "../xyz/atom-line.ts";
 import type { TextLine } from "../xyz/frame-builder.ts";
-import { readSpecies } from "../xyz/species.ts";
 import { bondTypeFault } from "./bond-types.ts";
 import { intColumns, textColumns } from "./columns.ts";
 import { isFault, misplaced, readCoordinate, readSymbol } from "./faults.ts";
@@ -29,8 +28,7 @@ export function takeAtomLine(builder: RecordBuilder, line: TextLine): AtomFault 
   }
   for (let axis = 0; axis < 3; axis++) {
     const from = 10 * axis;
-    const where = `columns ${from + 1} to ${from + 10}`;
-    const reading = readCoordinate(textColumns(text, from, from + 10), axis, where, from + 1);
+    const reading = readCoordinate(textColumns(text, from, from + 10), axis, from + 1);
     if (typeof reading !== "number") return reading;
     builder.positions[3 * atom + axis] = reading;
   }
@@ -38,9 +36,9 @@ export function takeAtomLine(builder: RecordBuilder, line: TextLine): AtomFault 
     return misplaced("S01", "Column 31 should be blank before the element.", text.slice(20, 40), 31);
   }
   const symbol = textColumns(text, 31, 34);
-  const parsed = readSymbol(symbol, 32, readSpecies);
-  if (isFault(parsed)) return parsed;
-  builder.putName(atom, makeAtom(parsed, symbol, null));
+  const named = readSymbol(symbol, 32);
+  if (isFault(named)) return named;
+  builder.putName(atom, named);
   if (text !== line.text) builder.substitutions ||= line.number;
   const fault = takeAtomColumns(builder, atom, text);
   if (fault === null) builder.read += 1;

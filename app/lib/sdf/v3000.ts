@@ -1,8 +1,7 @@
 import { parseNumber, plainBlanksAndMinus } from "../intake/numbers.ts";
 import { MAX_LINE_BYTES } from "../text/lines.ts";
-import { type AtomFault, makeAtom, splitFields } from "../xyz/atom-line.ts";
+import { type AtomFault, splitFields } from "../xyz/atom-line.ts";
 import type { BuilderFault, TextLine } from "../xyz/frame-builder.ts";
-import { readSpecies } from "../xyz/species.ts";
 import { bondTypeFault } from "./bond-types.ts";
 import { fieldName } from "./data-fields.ts";
 import { isFault, misplaced, queryFeature, readCoordinate, readSymbol } from "./faults.ts";
@@ -130,14 +129,14 @@ export class V3000Lines {
     this.#places.set(Number(index), atom);
     this.#indices.push(Number(index));
     const unquoted = symbol.replace(/^"(.*)"$/, "$1");
-    const parsed = readSymbol(unquoted, 1, readSpecies);
-    if (isFault(parsed)) return { ...parsed, column: undefined };
+    const named = readSymbol(unquoted, 1);
+    if (isFault(named)) return { ...named, column: undefined };
     for (let axis = 0; axis < 3; axis++) {
-      const reading = readCoordinate(fields[2 + axis]!, axis, "", 1);
-      if (typeof reading !== "number") return { ...reading, column: undefined };
+      const reading = readCoordinate(fields[2 + axis]!, axis, null);
+      if (typeof reading !== "number") return reading;
       builder.positions[3 * atom + axis] = reading;
     }
-    builder.putName(atom, makeAtom(parsed, unquoted, null));
+    builder.putName(atom, named);
     const fault = this.#takeKeys(atom, fields.slice(5), found);
     builder.read += 1;
     return fault;

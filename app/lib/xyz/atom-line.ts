@@ -230,7 +230,8 @@ function decimalComma(field: Field, what: string): AtomFault {
   };
 }
 
-function elementFault(parsed: ParsedElement, field: Field): AtomFault | null {
+/** What is wrong with an element's name; null where it is clear. Other readers use it too. */
+export function elementFault(parsed: ParsedElement, field: Field): AtomFault | null {
   const at = { found: field.text, column: field.column };
   if (parsed.kind === "unknown") {
     const message = parsed.code === "X18" ? "The element is no atomic number." : "The element is not known.";
@@ -245,7 +246,8 @@ function elementFault(parsed: ParsedElement, field: Field): AtomFault | null {
   return { code: parsed.code, reason: "unclear", message: "The element has two readings.", hint, ...at };
 }
 
-function numberFault(fault: NumberFault, field: Field, axis: number): AtomFault {
+/** What is wrong with a coordinate's token. Other readers use it too. */
+export function numberFault(fault: NumberFault, field: Field, axis: number): AtomFault {
   const what = `The ${AXES[axis]} coordinate`;
   if (fault === "decimal-comma") return decimalComma(field, what);
   if (fault === "run-together") return runTogetherFault(field);
