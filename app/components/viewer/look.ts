@@ -1,4 +1,4 @@
-import type { Token } from "~/lib/view/marks";
+import type { Token } from "~/lib/view/mark";
 
 /** Radii, widths and colours of the 3D view, shared by canvas, still picture and their marks. */
 

@@ -1,4 +1,4 @@
-import type { Mark, Token } from "~/lib/view/marks";
+import type { Mark, Token } from "~/lib/view/mark";
 
 export function tokenColour(token: Token): string {
   return `var(--color-${token})`;

@@ -1,4 +1,4 @@
-import type { Mark } from "~/lib/view/marks";
+import type { Mark } from "~/lib/view/mark";
 import { type Palette, readPalette } from "./look";
 
 /** Canvas pixels per CSS pixel. */

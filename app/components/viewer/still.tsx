@@ -1,6 +1,7 @@
 import { memo, type ReactNode } from "react";
 import { type Camera, homeCamera } from "~/lib/view/camera";
-import { type Mark, type Token, viewMarks } from "~/lib/view/marks";
+import type { Mark, Token } from "~/lib/view/mark";
+import { viewMarks } from "~/lib/view/marks";
 import { buildScene, type Figure, type Scene, type SceneInput } from "~/lib/view/scene";
 import {
   type Cell,

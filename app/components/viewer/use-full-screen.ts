@@ -1,12 +1,14 @@
 import { type RefObject, useEffect, useRef, useState } from "react";
 
-/** Lets an element fill the screen, where the browser can; Escape leaves. */
-export function useFullScreen(): {
+export interface FullScreen {
   box: RefObject<HTMLDivElement | null>;
   on: boolean;
   offered: boolean;
   toggle(): void;
-} {
+}
+
+/** Lets an element fill the screen, where the browser can; Escape leaves. */
+export function useFullScreen(): FullScreen {
   const box = useRef<HTMLDivElement>(null);
   const [on, setOn] = useState(false);
   const [offered, setOffered] = useState(false);

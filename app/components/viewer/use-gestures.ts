@@ -29,17 +29,20 @@ type Handlers = Pick<
   | "style"
 > & { ref(element: HTMLDivElement | null): void };
 
+export interface Gestures {
+  handlers: Handlers;
+  /** Class of what touch does. */
+  touch: string;
+  hovered: { atom: number; figure: Figure } | null;
+}
+
 /**
  * Pointer, wheel and keys of a view. The wheel zooms only while the view has the focus or with Ctrl, and one finger
  * moves the page up and down until the view was tapped: who scrolls past it must not get stuck in it.
  *
  * @param alone the view fills the screen: no page to scroll
  */
-export function useGestures(
-  view: View,
-  alone: boolean,
-  onAtom: (atom: number) => void,
-): { handlers: Handlers; touch: string; hovered: { atom: number; figure: Figure } | null } {
+export function useGestures(view: View, alone: boolean, onAtom: (atom: number) => void): Gestures {
   const [surface, setSurface] = useState<HTMLDivElement | null>(null);
   const [focused, setFocused] = useState(false);
   const [over, setOver] = useState<{ atom: number; figure: Figure } | null>(null);

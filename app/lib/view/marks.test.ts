@@ -1,6 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { homeCamera, IDENTITY, zoomBy } from "./camera.ts";
-import { type Mark, type MarkInput, scaleBar, viewMarks } from "./marks.ts";
+import type { Mark } from "./mark.ts";
+import { type MarkInput, scaleBar, viewMarks } from "./marks.ts";
 import { buildScene, type ViewConformer } from "./scene.ts";
 import { cellOf, projector, stageOf } from "./stage.ts";
 
