@@ -1,5 +1,6 @@
 import { createHash } from "node:crypto";
 import { insertFrameBlock } from "../../db/queries/insert-blobs.server.ts";
+import { OneAhead } from "./one-ahead.ts";
 
 /** Coordinates a block holds, about: a row that every packet limit lets pass. */
 const BLOCK_BYTES = 2 ** 20;
@@ -25,6 +26,7 @@ export interface WrittenShape {
 export class BlockWriter {
   readonly shapes = new Map<number, WrittenShape>();
   private readonly open = new Map<number, OpenBlock>();
+  private readonly ahead = new OneAhead();
   private readonly ensembleId: string;
   private openBytes = 0;
 
@@ -50,12 +52,17 @@ export class BlockWriter {
     written.frames += 1;
     const index = written.frames - 1;
     if (block.count >= capacity) await this.flush(shape);
-    else if (this.openBytes > MEMORY_BYTES) await this.end();
+    else if (this.openBytes > MEMORY_BYTES) await this.flushAll();
     return index;
   }
 
   /** Writes out everything that is still in memory. */
   async end(): Promise<void> {
+    await this.flushAll();
+    await this.ahead.end();
+  }
+
+  private async flushAll(): Promise<void> {
     for (const shape of [...this.open.keys()]) await this.flush(shape);
   }
 
@@ -84,13 +91,8 @@ export class BlockWriter {
     const data = Buffer.from(block.positions.buffer, 0, block.count * block.frameLength * 8);
     const sha256 = createHash("sha256").update(data).digest();
     written.blocks.push(sha256);
-    await insertFrameBlock({
-      ensembleId: this.ensembleId,
-      shape,
-      first: block.first,
-      count: block.count,
-      data,
-      sha256,
-    });
+    const { ensembleId } = this;
+    const { first, count } = block;
+    await this.ahead.push(() => insertFrameBlock({ ensembleId, shape, first, count, data, sha256 }));
   }
 }

@@ -1,7 +1,6 @@
-import { sql } from "drizzle-orm";
-import { db, type Queryable } from "../../db/client.server.ts";
-import { frames } from "../../db/schema.server.ts";
+import { type FrameRow, insertFrames, updateFrameStates } from "../../db/queries/insert-frames.server.ts";
 import type { FrameState, HoldReason } from "../../lib/intake/report.ts";
+import { OneAhead } from "./one-ahead.ts";
 
 /** Rows a statement: enough to be quick, few enough for every packet limit. */
 const BATCH_ROWS = 500;
@@ -43,7 +42,8 @@ const note = (text: string | null) => (text === null ? null : text.slice(0, 1000
 /** Writes rows of frames while their file is read, so that comments of any length never gather in memory. */
 export class FrameWriter {
   private readonly ensembleId: string;
-  private rows: NewFrame[] = [];
+  private readonly ahead = new OneAhead();
+  private rows: FrameRow[] = [];
   private characters = 0;
 
   constructor(ensembleId: string) {
@@ -51,59 +51,50 @@ export class FrameWriter {
   }
 
   async add(frame: NewFrame): Promise<void> {
-    this.rows.push(frame);
+    this.rows.push({
+      ...frame,
+      ensembleId: this.ensembleId,
+      label: frame.label === null ? null : [...frame.label].slice(0, 200).join(""),
+      comment: cutBytes(frame.comment, COMMENT_BYTES),
+      readState: frame.state,
+      note: note(frame.note),
+    });
     this.characters += frame.comment.length;
-    if (this.rows.length >= BATCH_ROWS || this.characters >= BATCH_CHARACTERS) await this.end();
+    if (this.rows.length >= BATCH_ROWS || this.characters >= BATCH_CHARACTERS) await this.flush();
   }
 
   async end(): Promise<void> {
+    await this.flush();
+    await this.ahead.end();
+  }
+
+  private async flush(): Promise<void> {
     if (this.rows.length === 0) return;
     const rows = this.rows;
     this.rows = [];
     this.characters = 0;
-    await db.insert(frames).values(
-      rows.map((row) => ({
-        ...row,
-        ensembleId: this.ensembleId,
-        label: row.label === null ? null : [...row.label].slice(0, 200).join(""),
-        comment: cutBytes(row.comment, COMMENT_BYTES),
-        readState: row.state,
-        note: note(row.note),
-      })),
-    );
+    await this.ahead.push(() => insertFrames(rows));
   }
 }
 
 /** Sets the state that intake gives to frames whose row is there, many at a time. */
-export async function writeDecisions(
-  tx: Queryable,
-  ensembleId: string,
-  decisions: readonly FrameDecision[],
-): Promise<void> {
+export async function writeDecisions(ensembleId: string, decisions: readonly FrameDecision[]): Promise<void> {
   for (let at = 0; at < decisions.length; at += BATCH_ROWS) {
-    // The rows exist: only what stands behind "on duplicate key" is written. One statement instead of hundreds.
-    await tx
-      .insert(frames)
-      .values(
-        decisions.slice(at, at + BATCH_ROWS).map((decision) => ({
-          ensembleId,
-          number: decision.number,
-          file: 0,
-          line: 0,
-          comment: "",
-          state: decision.state,
-          readState: decision.state,
-          holdReason: decision.holdReason,
-          note: note(decision.note),
-        })),
-      )
-      .onDuplicateKeyUpdate({
-        set: {
-          state: sql`values(${frames.state})`,
-          readState: sql`values(${frames.readState})`,
-          holdReason: sql`values(${frames.holdReason})`,
-          note: sql`values(${frames.note})`,
-        },
-      });
+    await updateFrameStates(
+      decisions.slice(at, at + BATCH_ROWS).map((decision) => ({
+        ensembleId,
+        number: decision.number,
+        file: 0,
+        line: 0,
+        shape: null,
+        indexInShape: null,
+        label: null,
+        comment: "",
+        state: decision.state,
+        readState: decision.state,
+        holdReason: decision.holdReason,
+        note: note(decision.note),
+      })),
+    );
   }
 }

@@ -265,7 +265,7 @@ export class Reading {
       });
     }
     this.messages.addAll(classification.messages);
-    await writeDecisions(db, this.ensembleId, [...decisions.values()]);
+    await writeDecisions(this.ensembleId, [...decisions.values()]);
     return {
       classification,
       group,

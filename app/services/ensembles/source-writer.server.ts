@@ -6,6 +6,7 @@ import { db } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { insertSourceChunk } from "../../db/queries/insert-blobs.server.ts";
 import { sourceChunks, sources } from "../../db/schema.server.ts";
+import { OneAhead } from "./one-ahead.ts";
 
 const pack = promisify(deflate);
 const unpack = promisify(inflate);
@@ -27,6 +28,7 @@ export class SourceWriter {
   readonly sourceId = newId();
   private readonly hash = createHash("sha256");
   private readonly teamId: string;
+  private readonly ahead = new OneAhead();
   private pending: Uint8Array[] = [];
   private pendingBytes = 0;
   private position = 0;
@@ -63,6 +65,7 @@ export class SourceWriter {
   /** Writes what is left; the row still waits for the transaction that lets it answer for its checksum. */
   async end(): Promise<WrittenSource> {
     await this.flush();
+    await this.ahead.end();
     return { sourceId: this.sourceId, sha256: this.hash.digest(), bytes: this.bytes };
   }
 
@@ -71,14 +74,19 @@ export class SourceWriter {
     const raw = Buffer.concat(this.pending);
     this.pending = [];
     this.pendingBytes = 0;
+    const position = this.position++;
+    const { bytes } = this;
+    await this.ahead.push(() => this.store(position, raw, bytes));
+  }
+
+  private async store(position: number, raw: Buffer, bytes: number): Promise<void> {
+    const { sourceId } = this;
     // Level 1: the time of arrival matters more than the last percent, and packed files do not shrink anyway.
-    const data = await pack(raw, { level: 1 });
-    await insertSourceChunk({ sourceId: this.sourceId, position: this.position, data });
-    this.position += 1;
+    await insertSourceChunk({ sourceId, position, data: await pack(raw, { level: 1 }) });
     await db
       .update(sources)
-      .set({ bytes: this.bytes, chunks: this.position, createdAt: new Date() })
-      .where(eq(sources.id, this.sourceId));
+      .set({ bytes, chunks: position + 1, createdAt: new Date() })
+      .where(eq(sources.id, sourceId));
   }
 }
 
