@@ -109,7 +109,7 @@ function Foot({ recipe, results }: { recipe?: ReactNode; results: boolean }) {
           ) : null}
           {!recipe && !results ? <p>Lowlying keeps your original bytes, and gives them back.</p> : null}
         </div>
-        <p className="flex flex-wrap gap-x-3 gap-y-1">
+        <p className="-my-1 flex flex-wrap items-center gap-x-3 [&>a]:py-1 pointer-coarse:[&>a]:py-3">
           <Link className={linkClass} to={href("/methods")}>
             Methods and sources
           </Link>

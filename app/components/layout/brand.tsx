@@ -22,7 +22,7 @@ export function Brand({ short = false }: { short?: boolean }) {
   return (
     <Link
       to={href("/")}
-      className="flex items-center gap-2 rounded-sm text-base font-semibold text-ink no-underline"
+      className="-mx-2 flex h-11 items-center gap-2 rounded-sm px-2 text-base font-semibold text-ink no-underline"
     >
       <BrandMark />
       <span className={short ? "max-sm:sr-only" : ""}>Lowlying</span>

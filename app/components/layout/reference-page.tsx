@@ -34,7 +34,7 @@ export function ReferencePage({
               <li key={id} className="lg:border-b lg:border-rule">
                 <a
                   href={`#${id}`}
-                  className="block text-link underline decoration-1 underline-offset-3 lg:py-2 lg:text-ink-2 lg:no-underline lg:hover:underline"
+                  className="block py-1 text-link underline decoration-1 underline-offset-3 lg:py-2 lg:text-ink-2 lg:no-underline lg:hover:underline"
                 >
                   {name}
                 </a>
@@ -67,14 +67,9 @@ export function ReferencePage({
   );
 }
 
-/** A formula on its own line; it scrolls where it is wider than the page. */
+/** A formula on its own line. */
 export function FormulaLine({ children }: { children: ReactNode }) {
-  return (
-    // biome-ignore lint/a11y/noNoninteractiveTabindex: it scrolls sideways, and keys must reach it
-    <p tabIndex={0} className="figures overflow-x-auto rounded-sm bg-sunk px-4 py-2 whitespace-nowrap">
-      {children}
-    </p>
-  );
+  return <p className="figures rounded-sm bg-sunk px-4 py-2">{children}</p>;
 }
 
 /** A source: journal, year, volume, page. `remembered` ones were not looked up when this was written. */

@@ -42,7 +42,7 @@ export function Th({ unit, align = "left", sort, onSort, sortTo, className = "",
       )}
     </>
   );
-  const actClass = `inline-block rounded-sm hover:text-ink ${ALIGN[align]}`;
+  const actClass = `-my-1 inline-block rounded-sm py-1 hover:text-ink pointer-coarse:-my-3 pointer-coarse:py-3 ${ALIGN[align]}`;
   return (
     <th
       scope="col"
