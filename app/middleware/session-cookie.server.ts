@@ -23,7 +23,7 @@ export function sessionCookie(): Cookie {
 /** The secret in a request's cookie, or null. A signature that is none of ours counts as no cookie. */
 export async function readSessionCookie(header: string | null): Promise<string | null> {
   const value: unknown = await sessionCookie().parse(header);
-  return typeof value === "string" ? value : null;
+  return typeof value === "string" && value !== "" ? value : null;
 }
 
 /** `Set-Cookie` of a new session, or of its end. Without `stay` the browser forgets it when it closes. */
