@@ -1,14 +1,15 @@
 import { DEFAULT_LIMITS, type FrameLimits } from "./intake/limits.ts";
 import { IntakeRejection } from "./intake/reject.ts";
 import type { IntakeMessage } from "./intake/report.ts";
-import { type Counts, readCountsLine } from "./sdf/counts-line.ts";
 import { FieldCollector } from "./sdf/data-fields.ts";
+import { EXACT_FIELD } from "./sdf/exact-coordinates.ts";
 import { readFastAtoms, readFastBonds } from "./sdf/fast-lines.ts";
 import { misplaced } from "./sdf/faults.ts";
 import { finishRecord } from "./sdf/finish-record.ts";
 import type { SdfFrame } from "./sdf/frame.ts";
+import { HeadLines, type HeadReading } from "./sdf/head-lines.ts";
 import { BLOCK_END, PropertyLines } from "./sdf/property-lines.ts";
-import { RecordBuilder, type RecordHead, type RecordRoom } from "./sdf/record-builder.ts";
+import { RecordBuilder, type RecordRoom } from "./sdf/record-builder.ts";
 import { Topologies } from "./sdf/topology.ts";
 import { takeAtomLine, takeBondLine } from "./sdf/v2000.ts";
 import { V3000Lines } from "./sdf/v3000.ts";
@@ -26,8 +27,6 @@ export const SDF_READER_VERSION = "sdf 1";
 
 /** Tags are counted up to so many different ones in a file (row S19). */
 const COUNTED_TAGS = 1000;
-const HEAD_LINES = 4;
-const NO_HEAD = { title: "", program: "", comment: "" };
 const OTHER_FORMATS = /^\$(?:RXN|MDL|RDFILE|RIREG|MFMT)/;
 
 type Mode = "head" | "atoms" | "bonds" | "properties" | "v3000" | "data" | "skip";
@@ -60,9 +59,7 @@ export class SdfReader {
   readonly #tags = new Map<string, number>();
   #out: SdfFrame[] = [];
   #mode: Mode = "head";
-  /** The last lines before the counts of the next record; blank ones that are too many were let go. */
-  #head: TextLine[] = [];
-  #blanks = 0;
+  readonly #head = new HeadLines();
   #builder: RecordBuilder | null = null;
   #properties: PropertyLines | null = null;
   #v3000: V3000Lines | null = null;
@@ -194,22 +191,9 @@ export class SdfReader {
   // --- head ---------------------------------------------------------------------------------------
 
   #takeHead(line: TextLine): void {
-    if (this.frames === 0 && this.#head.length === 0) this.#checkFirst(line);
-    this.#head.push(line);
-    if (this.#head.length < HEAD_LINES) return;
-    const reading = readCountsLine(line.text);
-    if (reading?.kind === "counts") {
-      this.#begin(reading.counts, line);
-      return;
-    }
-    // A blank line too many before the title is passed over; a blank title itself is legal (rows S03, S04).
-    if (reading === null && this.#head[0]!.text.trim() === "") {
-      this.#head.shift();
-      this.#blanks += 1;
-      return;
-    }
-    if (reading === null) this.#breakHead(line);
-    else this.#begin(null, line, refuseCounts(reading, line.text));
+    if (this.frames === 0 && this.#head.isEmpty) this.#checkFirst(line);
+    const reading = this.#head.take(line);
+    if (reading) this.#begin(reading, line.text);
   }
 
   #checkFirst(line: TextLine): void {
@@ -224,53 +208,19 @@ export class SdfReader {
     });
   }
 
-  #begin(counts: Counts | null, line: TextLine, fault: AtomFault | null = null): void {
-    const [title, program, comment] = this.#head.map((one) => one.text);
-    const head: RecordHead = {
-      line: this.#head[0]!.number,
-      title: title ?? "",
-      program: program ?? "",
-      comment: comment ?? "",
-    };
-    this.#checkFrames(line.number);
-    if (counts?.version === "V2000") this.#checkAtoms(counts.atoms, line.text.slice(0, 3).trim());
-    const builder = new RecordBuilder(head, counts, line.number, this.#room);
-    if (fault) builder.refuse({ ...fault, line: line.number });
-    this.#remarkHead(builder, counts);
-    this.#start(builder, counts === null ? "skip" : counts.version === "V2000" ? "atoms" : "v3000");
-  }
-
-  #remarkHead(builder: RecordBuilder, counts: Counts | null): void {
-    if (this.#blanks > 0) {
-      const what = this.#blanks === 1 ? "A blank line stands" : `${this.#blanks} blank lines stand`;
-      const message = `${what} before the record; the format has none there. Passed over.`;
-      builder.remarks.push({ code: "S04", line: builder.head.line - this.#blanks, message });
-    }
-    if (counts?.tagged === false) {
-      const message = "The counts line names no version; the record is read as V2000.";
-      builder.remarks.push({ code: "S02", line: builder.line, message });
-    }
-  }
-
-  #start(builder: RecordBuilder, mode: Mode): void {
+  #begin({ head, counts, line, fault, remarks }: HeadReading, written: string): RecordBuilder {
+    this.#checkFrames(line);
+    if (counts?.version === "V2000") this.#checkAtoms(counts.atoms, written.slice(0, 3).trim());
+    const builder = new RecordBuilder(head, counts, line, this.#room);
+    builder.remarks.push(...remarks);
+    if (fault) builder.refuse(fault);
     this.#builder = builder;
-    this.#mode = mode;
-    this.#head = [];
-    this.#blanks = 0;
-    if (mode === "atoms") this.#properties = new PropertyLines(builder);
-    if (mode === "v3000") {
-      this.#v3000 = new V3000Lines(builder, (atoms, written) => this.#checkAtoms(atoms, written));
+    this.#mode = counts === null ? "skip" : counts.version === "V2000" ? "atoms" : "v3000";
+    if (this.#mode === "atoms") this.#properties = new PropertyLines(builder);
+    if (this.#mode === "v3000") {
+      this.#v3000 = new V3000Lines(builder, (atoms, text) => this.#checkAtoms(atoms, text));
     }
-  }
-
-  /** No counts where they should stand: the record cannot be read, wherever it began. */
-  #breakHead(line: TextLine): void {
-    const first = this.#head[0]!.number;
-    this.#checkFrames(first);
-    const builder = new RecordBuilder({ ...NO_HEAD, line: first }, null, first, this.#room);
-    const message = "The fourth line of the record should hold the counts of atoms and bonds.";
-    builder.refuse({ ...misplaced("S01", message, line.text), line: line.number });
-    this.#start(builder, "skip");
+    return builder;
   }
 
   #placeAt(line: number): Place {
@@ -306,21 +256,10 @@ export class SdfReader {
   }
 
   #takeDelimiter(): void {
-    if (this.#builder === null) this.#takeEmpty();
+    const line = this.#lines.line;
+    if (this.#builder === null) this.#begin(this.#head.end(line), "");
     else if (this.#mode !== "data") this.#cutOff(this.#builder, "$$$$ ends the record");
-    this.#emit(this.#lines.line);
-  }
-
-  /** A delimiter, or the end of the file, before the counts. */
-  #takeEmpty(): void {
-    const first = this.#head[0]?.number ?? this.#lines.line;
-    this.#checkFrames(first);
-    const builder = new RecordBuilder({ ...NO_HEAD, line: first }, null, first, this.#room);
-    builder.refuse({
-      ...misplaced("S14", "The record ends before the counts of atoms and bonds."),
-      line: first,
-    });
-    this.#start(builder, "skip");
+    this.#emit(this.#builder!, line);
   }
 
   #cutOff(builder: RecordBuilder, what: string): void {
@@ -333,8 +272,7 @@ export class SdfReader {
     builder.refuse({ ...misplaced("S14", `${what} ${inside}.`), hint, line: this.#lines.line });
   }
 
-  #emit(lastLine: number): void {
-    const builder = this.#builder!;
+  #emit(builder: RecordBuilder, lastLine: number): void {
     this.#data.end();
     const frame = finishRecord(builder, this.#data, this.#topologies, {
       file: this.#file,
@@ -352,6 +290,7 @@ export class SdfReader {
 
   #countTags(frame: SdfFrame): void {
     for (const tag of frame.fields.keys()) {
+      if (tag === EXACT_FIELD) continue;
       const seen = this.#tags.get(tag);
       if (seen !== undefined || this.#tags.size < COUNTED_TAGS) this.#tags.set(tag, (seen ?? 0) + 1);
     }
@@ -359,16 +298,8 @@ export class SdfReader {
 
   #finish(): void {
     const lastLine = this.#lines.line;
-    if (this.#builder === null && this.#head.some((line) => line.text.trim() !== "")) this.#takeEmpty();
-    const builder = this.#builder;
-    if (builder) {
-      // One MOL block alone needs no delimiter; an SDF does.
-      const isMolFile = this.frames === 0 && this.#data.isEmpty;
-      if (this.#mode === "data" && !isMolFile) {
-        this.#remark("S13", "The line $$$$ is missing at the end of the file.", lastLine);
-      } else if (this.#mode !== "data" && this.#mode !== "skip") this.#cutOff(builder, "The file ends");
-      this.#emit(lastLine);
-    }
+    if (this.#builder === null && !this.#head.isBlank) this.#begin(this.#head.end(lastLine), "");
+    if (this.#builder) this.#endRecord(this.#builder, lastLine);
     this.#remarkTags();
     if (this.frames > 0) return;
     throw new IntakeRejection({
@@ -379,6 +310,15 @@ export class SdfReader {
     });
   }
 
+  /** The last record has no delimiter. One MOL block alone needs none; an SDF does (row S13). */
+  #endRecord(builder: RecordBuilder, lastLine: number): void {
+    const isMolFile = this.frames === 0 && this.#data.isEmpty;
+    if (this.#mode === "data" && !isMolFile) {
+      this.#remark("S13", "The line $$$$ is missing at the end of the file.", lastLine);
+    } else if (this.#mode !== "data" && this.#mode !== "skip") this.#cutOff(builder, "The file ends");
+    this.#emit(builder, lastLine);
+  }
+
   #remarkTags(): void {
     const sound = this.frames - this.held;
     for (const [tag, count] of this.#tags) {
@@ -387,22 +327,6 @@ export class SdfReader {
       this.#remark("S19", `“${name}” stands in ${count} of ${sound} records; elsewhere it is missing.`);
     }
   }
-}
-
-function refuseCounts(
-  reading: { kind: "overflow" } | { kind: "unknown-version"; version: string },
-  found: string,
-): AtomFault {
-  if (reading.kind === "unknown-version") {
-    return misplaced("S02", "The version of the record is neither V2000 nor V3000.", reading.version, 34);
-  }
-  return {
-    code: "S06",
-    reason: "unreadable",
-    message: "The record has more than 999 atoms or bonds, for which V2000 has no room.",
-    hint: "Write this record as V3000.",
-    found,
-  };
 }
 
 /** `$$$$` and nothing but blanks behind it (row S13). */

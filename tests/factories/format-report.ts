@@ -9,6 +9,7 @@ import type { IntakeMessage, IntakeQuestion } from "../../app/lib/intake/report.
 import { sniff } from "../../app/lib/text/sniff.ts";
 import type { XyzFrame } from "../../app/lib/xyz/frame.ts";
 import { XyzReader } from "../../app/lib/xyz.server.ts";
+import { sdfReport } from "./sdf-report.ts";
 
 /**
  * What the readers say of one file, as the fixtures of the acceptance tables hold it: sniffed format, frames, messages
@@ -20,6 +21,7 @@ export function readReport(name: string, bytes: Uint8Array, chunk = bytes.length
   const start = { container, format, ...(remark ? { remark: remark.message } : {}) };
   if (refusal) return { ...start, refused: `${refusal.code}: ${refusal.message} ${refusal.hint}` };
   if (container !== "none") return start;
+  if (format === "sdf") return { ...start, ...sdfReport(name, bytes, chunk) };
   const reader = new XyzReader({ file: name });
   const frames: XyzFrame[] = [];
   try {

@@ -1,3 +1,4 @@
+import type { ParsedElement } from "../chem/elements.ts";
 import { readNumber } from "../intake/numbers.ts";
 import { type AtomFault, elementFault, makeAtom, type NamedAtom, numberFault } from "../xyz/atom-line.ts";
 import { readSpecies } from "../xyz/species.ts";
@@ -12,7 +13,7 @@ export function misplaced(code: string, message: string, found?: string, column?
     code,
     reason: "unreadable",
     message,
-    hint: "Write the record again with a program that keeps the columns of the format.",
+    hint: "Write the record again with a program that keeps to the format.",
     found,
     column,
   };
@@ -35,7 +36,8 @@ export function readCoordinate(token: string, axis: number, column: number | nul
   if (column === null) {
     return { ...numberFault(fault ?? "not-a-number", { text: token, column: 1 }, axis), column: undefined };
   }
-  if (fault === "decimal-comma" || fault === "foreign-digit" || fault === "not-finite") {
+  const explained = fault === "decimal-comma" || fault === "foreign-digit" || fault === "not-finite";
+  if (explained && token !== "") {
     return numberFault(fault, { text: token, column }, axis);
   }
   const where = `columns ${column} to ${column + 9}`;
@@ -54,7 +56,10 @@ export function readSymbol(symbol: string, column: number): NamedAtom | AtomFaul
   if (QUERY_SYMBOLS.test(symbol)) {
     return { ...queryFeature("The atom stands for several elements or for a rest.", symbol), column };
   }
-  const parsed = readSpecies(/^\d+$/.test(symbol) ? `${symbol}?` : symbol);
+  // Numbers are no symbols here, unlike in XYZ.
+  const parsed: ParsedElement = /^\d+$/.test(symbol)
+    ? { kind: "unknown", code: "X20", message: "" }
+    : readSpecies(symbol);
   return elementFault(parsed, { text: symbol, column }) ?? makeAtom(parsed, symbol, null);
 }
 

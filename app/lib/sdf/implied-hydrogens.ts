@@ -1,4 +1,4 @@
-import { AROMATIC, bondSum } from "./bond-types.ts";
+import { AROMATIC, bondSum, COORDINATION } from "./bond-types.ts";
 
 /** Atoms and bonds of a MOL block as its valences see them. */
 export interface BondTable {
@@ -79,7 +79,8 @@ function missingAt(
   const stated = table.valences?.[atom] ?? -1;
   if (stated >= 0) return { count: Math.max(0, stated - sum), certain: true };
   const valences = VALENCES[table.elements[atom]! - (table.charges?.[atom] ?? 0)];
-  if (!VALENCES[table.elements[atom]!] || !valences) return { count: 0, certain: false };
+  if (!VALENCES[table.elements[atom]!] || !valences || types.includes(COORDINATION))
+    return { count: 0, certain: false };
   const taken = sum + [0, 2, 1, 2][table.radicals?.[atom] ?? 0]!;
   const smallest = valences[0]!;
   if (taken <= smallest) return { count: smallest - taken, certain: true };

@@ -103,7 +103,7 @@ function withoutHydrogens(count: number): AtomFault {
     code: "S12",
     reason: "unclear",
     message: count === 1 ? "One hydrogen has no coordinates." : `${count} hydrogens have no coordinates.`,
-    hint: "By its valences the record holds more hydrogens than atoms of them. Write them with coordinates; if a charge is missing instead, write it as M  CHG.",
+    hint: "The bonds leave room for hydrogens that are not listed. Write them with coordinates; if a charge was left out instead, add it (M  CHG).",
   };
 }
 

@@ -68,7 +68,8 @@ export class V3000Lines {
     const start = from?.line ?? line.number;
     const fault = this.#takeJoined({ text: plainBlanksAndMinus(whole), number: start });
     if (plainBlanksAndMinus(whole) !== whole) this.#builder.substitutions ||= start;
-    return fault && { ...fault, line: start };
+    const atom = this.#blocks.at(-1) === "ATOM" ? { atom: this.#builder.read + 1 } : {};
+    return fault && { ...fault, ...atom, line: start };
   }
 
   #takeJoined(line: TextLine): AtomFault | null {
