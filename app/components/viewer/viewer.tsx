@@ -103,8 +103,13 @@ export function Viewer(props: ViewerProps) {
       </div>
       <ViewOptions {...props} list={props.children} numbers={numbers} onNumbers={() => setNumbers(!numbers)}>
         <p role="status" className="text-xs text-ink-3">
-          {pickWords(picked, texts)} {failureWords(canvas.failure)}
-          {failedToSave ? "The picture could not be made: take a smaller view and try again." : ""}
+          {[
+            pickWords(picked, texts),
+            failureWords(canvas.failure),
+            failedToSave ? "The picture could not be made: take a smaller view and try again." : "",
+          ]
+            .filter((sentence) => sentence !== "")
+            .join(" ")}
         </p>
       </ViewOptions>
     </figure>
@@ -159,5 +164,5 @@ function failureWords(failure: LazyCanvas["failure"]): string {
     failure === "no WebGL"
       ? "This browser draws no 3D (it has no WebGL 2)"
       : "The 3D part of this page did not arrive";
-  return `${reason}: a picture stands in, and can be turned, picked in and saved all the same. `;
+  return `${reason}: a picture stands in, and can be turned, picked in and saved all the same.`;
 }
