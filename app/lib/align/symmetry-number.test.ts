@@ -6,13 +6,16 @@ import {
   motions,
   moved,
   placed,
+  pointSets,
   type Vector,
 } from "../../../tests/factories/geometry.ts";
 import { c60, chain, cubane, plainGraph, ring, withHydrogens } from "../../../tests/factories/graphs.ts";
-import { type Points, pack } from "../../../tests/factories/yardstick.ts";
+import { everyMapping, type Points, pack } from "../../../tests/factories/yardstick.ts";
+import { automorphismChain } from "../chem/automorphisms.ts";
 import { type Graph, makeGraph } from "../structure.ts";
 import { makePlan } from "./plan.ts";
 import { writeShape } from "./shape.ts";
+import { superpose } from "./superpose.ts";
 import { SymmetryNumber } from "./symmetry-number.ts";
 
 function symmetryNumber(graph: Graph, points: Points, nodeLimit?: number): number | null {
@@ -50,6 +53,21 @@ const ethaneAt = (turn: number): Vector[] => {
   const first = [0, 120, 240].map((t) => placed([0.5, 1, 0], b, a, 1.09, 111.2, t));
   return [a, b, ...first, ...[60, 180, 300].map((t) => placed(first[0]!, a, b, 1.09, 111.2, t + turn))];
 };
+const tertButanol = withHydrogens("OCCCC", [
+  [0, 1],
+  [1, 2],
+  [1, 3],
+  [1, 4],
+]);
+const xylene = withHydrogens(
+  "CCCCCCCC",
+  [...ring(6), [0, 6], [3, 7]],
+  [
+    [0, 1],
+    [2, 3],
+    [4, 5],
+  ],
+);
 const alkaneGraph = (carbons: number) =>
   makeGraph(
     Uint8Array.from({ length: 3 * carbons + 2 }, (_, a) => (a < carbons ? 6 : 1)),
@@ -133,6 +151,40 @@ describe("symmetry number", () => {
         cube.map(([x, y, z]) => [x!, y!, 1.4 * z!]),
       ),
     ).toBe(8);
+  });
+
+  // Some atoms drawn together, so that exchanges come near to what counts; brute force over all of them.
+  it.each([
+    ["tert-butanol (1296)", tertButanol, 8],
+    ["p-xylene (144)", xylene, 30],
+    ["butane (288)", alkaneGraph(4), 20],
+  ] as [string, Graph, number][])("counts what brute force counts: %s", (_name, graph, numRuns) => {
+    const n = graph.elements.length;
+    const every = Int32Array.from({ length: n }, (_, a) => a);
+    const maps = [...everyMapping(automorphismChain(graph), every)];
+    fc.assert(
+      fc.property(pointSets(n), fc.nat(), fc.constantFrom(0.02, 0.05, 0.1, 0.2), (points, which, share) => {
+        const map = maps[which % maps.length]!;
+        const near = points.map((p, a) => p.map((v, k) => (1 - share) * points[map[a]!]![k]! + share * v));
+        const x = pack(near);
+        let expected = 0;
+        let close = false;
+        for (const one of maps) {
+          const image = one.map((a) => a);
+          const { positions, rmsd } = superpose(x, x, { permutation: image });
+          let reach = 0;
+          for (let a = 0; a < n; a++) {
+            const move = [0, 1, 2].map((k) => positions[3 * image[a]! + k]! - x[3 * a + k]!);
+            reach = Math.max(reach, Math.hypot(...move));
+          }
+          close ||= Math.abs(rmsd - 0.1) < 1e-7 || Math.abs(reach - 0.5) < 1e-7;
+          if (rmsd <= 0.1 && reach <= 0.5) expected += 1;
+        }
+        fc.pre(!close);
+        expect(symmetryNumber(graph, near)).toBe(expected);
+      }),
+      { seed: 20272, numRuns },
+    );
   });
 
   it("does not count two hydrogens of a large molecule changing places, whatever the mean says", () => {
