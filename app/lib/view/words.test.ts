@@ -25,6 +25,21 @@ describe("sceneWords", () => {
     );
   });
 
+  it("counts the selected ones that found no room in colours", () => {
+    const conformers = Array.from({ length: 7 }, (_, k) => ({
+      ...input.conformers[0]!,
+      positions: Float64Array.from(input.conformers[0]!.positions),
+      frame: k + 1,
+      selected: k < 6,
+    }));
+    expect(sceneWords(buildScene({ ...input, conformers }), caption)).toContain(
+      "3 others as lines tinted by population (2 of them selected).",
+    );
+    expect(sceneWords(buildScene({ ...input, conformers, mode: "side" }), caption)).toContain(
+      "side by side; 2 more selected, not drawn.",
+    );
+  });
+
   it("says what changed in a held structure", () => {
     const held = {
       frame: 233,

@@ -14,10 +14,16 @@ export function sceneWords(scene: Scene, caption: { strong: string; rest: string
   const apart = scene.mode === "side" && scene.strong.length > 1 ? " side by side" : "";
   const others =
     scene.faint.length > 0 ? `, ${plural(scene.faint.length, "other")} as lines tinted by population` : "";
+  const beyond =
+    scene.selectedBeyond === 0
+      ? ""
+      : scene.faint.length > 0
+        ? ` (${scene.selectedBeyond} of them selected)`
+        : `; ${scene.selectedBeyond} more selected, not drawn`;
   const changes = scene.strong.flatMap(({ name, change }) =>
     change ? [` In ${name}: ${change.words}.`] : [],
   );
-  return `${title}. ${named} in atom colours${apart}${others}.${changes.join("")}`;
+  return `${title}. ${named} in atom colours${apart}${others}${beyond}.${changes.join("")}`;
 }
 
 function figureWords({ name, frame, population, held }: Figure): string {
