@@ -57,6 +57,7 @@ async function main() {
     server: { middlewareMode: true, hmr: { server: channel } },
   });
   await watchWorker(state.vite);
+  keepSignals();
   const { application } = (await load()).entry.module;
   const { demo } = await application.boot();
   state.application = application;
@@ -68,7 +69,19 @@ async function main() {
   say(`Lowlying: ${APP_ORIGIN}`);
 }
 
-for (const signal of ["SIGINT", "SIGTERM"]) process.on(signal, () => stop(0));
+const SIGNALS = ["SIGINT", "SIGTERM", "SIGHUP"];
+const onSignal = () => stop(0);
+for (const signal of SIGNALS) process.on(signal, onSignal);
+
+/** Vite's servers end the process by themselves, before the jobs are handed back and the database is left. */
+function keepSignals() {
+  for (const signal of SIGNALS) {
+    for (const listener of process.listeners(signal)) {
+      if (listener !== onSignal) process.off(signal, listener);
+    }
+  }
+  process.stdin.removeAllListeners("end");
+}
 
 main().catch(async (error) => {
   if (!state.stopping)
