@@ -14,7 +14,7 @@ const TONES: Record<BadgeTone, string> = {
 };
 
 /** Two upright bars: kept, but nothing sails there. */
-export function HeldBars() {
+function HeldBars() {
   return (
     <svg viewBox="0 0 16 16" aria-hidden="true" className="size-3 fill-none stroke-current stroke-2">
       <path d="M6 4v8M10 4v8" strokeLinecap="round" />
@@ -64,14 +64,4 @@ export function Badge({
 /** Degeneracy where it is the subject: ×2. */
 export function DegeneracyBadge({ value }: { value: number }) {
   return <Badge>×{value}</Badge>;
-}
-
-/** How often the search met a conformer: "found 9×". It never weighs. */
-export function FoundBadge({ times }: { times: number }) {
-  return <Badge>found {times}×</Badge>;
-}
-
-/** The search for the exact value met its bound of work: the truth is not larger. */
-export function UpperBoundBadge() {
-  return <Badge title="The work bound was met: the true value is at most this one.">upper bound</Badge>;
 }

@@ -106,30 +106,3 @@ export function TextField({
     </Field>
   );
 }
-
-/** Several lines of text. */
-export function TextAreaField({
-  label,
-  aside,
-  help,
-  error,
-  hideLabel,
-  className,
-  id: givenId,
-  rows = 3,
-  ...input
-}: FieldNotes & ComponentProps<"textarea">) {
-  const { id, describedBy } = useFieldIds(givenId, { help, error });
-  return (
-    <Field {...{ id, label, aside, help, error, hideLabel, className }}>
-      <textarea
-        id={id}
-        rows={rows}
-        aria-invalid={error ? true : undefined}
-        aria-describedby={describedBy}
-        className={`block w-full rounded-md border bg-sheet px-3 py-2 text-ink max-sm:text-base ${error ? "border-danger-edge inset-ring inset-ring-danger-edge" : "border-edge"}`}
-        {...input}
-      />
-    </Field>
-  );
-}

@@ -19,14 +19,6 @@ const SHAPES = [
   <path key="v" d="M6 11.2.7 1.6h10.6z" />,
 ] as const;
 
-/** Dash of a level's line in charts, by ordinal; undefined is solid. */
-export const LEVEL_DASHES = [undefined, "6 3", "2 3", "8 3 2 3", "1 3", "10 4"] as const;
-
-/** CSS colour of a level by its ordinal from 1; the seventh begins again. */
-export function levelColour(ordinal: number): string {
-  return `var(--color-level-${((ordinal - 1) % 6) + 1})`;
-}
-
 /** Hue and marker of a level by order of arrival, for good; from the seventh on hollow. The name always stands beside it. */
 export function LevelMarker({ ordinal, className = "" }: { ordinal: number; className?: string }) {
   const place = (ordinal - 1) % 6;

@@ -55,15 +55,6 @@ export function MenuItem({
   );
 }
 
-/** A link as an entry; `children` is one `<Link>` or `<a>`. */
-export function MenuLink({ children }: { children: ReactNode }) {
-  return (
-    <DropdownMenu.Item asChild className={itemClass}>
-      {children}
-    </DropdownMenu.Item>
-  );
-}
-
 export function MenuRule() {
   return <DropdownMenu.Separator className="my-1 border-t border-rule" />;
 }
