@@ -1,49 +1,11 @@
-import { useEffect, useRef, useState } from "react";
-import { href, useFetcher } from "react-router";
+import { type FormEvent, type ReactNode, useEffect, useRef, useState } from "react";
+import { href } from "react-router";
 import { Button, SubmitButton } from "~/components/ui/button";
 import { Dialog, DialogClose, DialogFoot } from "~/components/ui/dialog";
 import { TextField } from "~/components/ui/field";
 import { TextButton } from "~/components/ui/text-link";
-import { showToast } from "~/components/ui/toast";
 import { formatCount } from "~/lib/format";
-import type { ActAnswer } from "./act-answer";
-
-/** Says that a hold or a release is done, and offers to take it back. */
-export function useUndoToast(ensembleId: string, answer: ActAnswer | undefined) {
-  const undo = useFetcher<ActAnswer>();
-  const told = useRef<ActAnswer | undefined>(undefined);
-  useEffect(() => {
-    const done = answer?.done;
-    if (!answer?.ok || !done || told.current === answer) return;
-    told.current = answer;
-    const { frame } = done;
-    if (frame === undefined || (done.intent !== "hold" && done.intent !== "release")) return;
-    const held = done.intent === "hold";
-    showToast({
-      tone: "done",
-      badge: held ? "held" : "released",
-      text: held
-        ? `Frame ${formatCount(frame)} is held and left out of every computation.`
-        : `Frame ${formatCount(frame)} takes part again.`,
-      action: {
-        label: "Undo",
-        act: () =>
-          void undo.submit(
-            {
-              intent: held ? "release" : "hold",
-              frame: String(frame),
-              reason: `Undone: ${done.reason ?? ""}`.trim(),
-            },
-            { method: "post", action: href("/ensembles/:id/intake", { id: ensembleId }) },
-          ),
-      },
-    });
-  }, [answer, ensembleId, undo]);
-  useEffect(() => {
-    if (undo.data && !undo.data.ok)
-      showToast({ tone: "failed", text: undo.data.message ?? "This could not be undone." });
-  }, [undo.data]);
-}
+import { useDecisions } from "./decisions";
 
 /** Asks why a held frame is released. */
 export function ReleaseFrame({
@@ -105,24 +67,47 @@ function DecideDialog({
   intent: "hold" | "release";
   frame: number | null;
   frames?: number;
-  trigger: React.ReactNode;
+  trigger: ReactNode;
   title: string;
   description: string;
   placeholder: string;
   button: string;
 }) {
   const [open, setOpen] = useState(false);
-  const fetcher = useFetcher<ActAnswer>();
-  const answer = fetcher.data;
-  useUndoToast(ensembleId, answer);
+  const [sent, setSent] = useState(false);
+  const [outside, setOutside] = useState(false);
+  const { hold, release, pending, refusal, taken } = useDecisions();
+  const before = useRef(taken);
   useEffect(() => {
-    if (answer?.ok && fetcher.state === "idle") setOpen(false);
-  }, [answer, fetcher.state]);
+    if (open && taken > before.current) setOpen(false);
+  }, [open, taken]);
+  const send = (event: FormEvent<HTMLFormElement>) => {
+    event.preventDefault();
+    const form = new FormData(event.currentTarget);
+    const number = frame ?? Number(form.get("frame"));
+    setOutside(frames !== undefined && !(number >= 1 && number <= frames));
+    if (frames !== undefined && !(number >= 1 && number <= frames)) return;
+    before.current = taken;
+    setSent(true);
+    (intent === "hold" ? hold : release)(number, String(form.get("reason")).trim());
+  };
   return (
-    <Dialog open={open} onOpenChange={setOpen} trigger={trigger} title={title} description={description}>
-      <fetcher.Form
+    <Dialog
+      open={open}
+      onOpenChange={(next) => {
+        before.current = taken;
+        setOpen(next);
+        setSent(false);
+        setOutside(false);
+      }}
+      trigger={trigger}
+      title={title}
+      description={description}
+    >
+      <form
         method="post"
         action={href("/ensembles/:id/intake", { id: ensembleId })}
+        onSubmit={send}
         className="grid gap-4"
       >
         <input type="hidden" name="intent" value={intent} />
@@ -135,7 +120,10 @@ function DecideDialog({
             required
             autoComplete="off"
             placeholder={`1 to ${formatCount(frames)}`}
-            className="max-w-40"
+            className="max-w-60"
+            error={
+              outside ? `Frames are numbered from 1 to ${formatCount(frames)}, in file order.` : undefined
+            }
           />
         ) : (
           <input type="hidden" name="frame" value={frame} />
@@ -147,15 +135,15 @@ function DecideDialog({
           maxLength={500}
           autoComplete="off"
           placeholder={placeholder}
-          error={answer && !answer.ok ? answer.message : undefined}
+          error={sent && !pending && refusal ? refusal : undefined}
         />
         <DialogFoot note="The logbook keeps who decided, when and why.">
-          <SubmitButton pending={fetcher.state !== "idle"}>{button}</SubmitButton>
+          <SubmitButton pending={pending}>{button}</SubmitButton>
           <DialogClose asChild>
             <Button kind="quiet">Cancel</Button>
           </DialogClose>
         </DialogFoot>
-      </fetcher.Form>
+      </form>
     </Dialog>
   );
 }

@@ -1,3 +1,4 @@
+import { useEffect, useRef } from "react";
 import { href } from "react-router";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { KeyFigure, KeyFigures } from "~/components/ui/key-figures";
@@ -16,6 +17,12 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
   const { ensemble } = useWorkbench();
   const finding = intakeFinding(ensemble, intake.waiting);
   const asks = ensemble.openQuestions > 0;
+  const said = useRef<HTMLDivElement>(null);
+  const before = useRef(ensemble.openQuestions);
+  useEffect(() => {
+    if (ensemble.openQuestions < before.current) said.current?.focus();
+    before.current = ensemble.openQuestions;
+  }, [ensemble.openQuestions]);
   return (
     <section aria-labelledby="section-title">
       <SectionHead
@@ -23,7 +30,10 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
         title="Intake"
         aside={<TextLink to={href("/formats")}>What the readers accept</TextLink>}
       />
-      <Finding more={finding.second ?? undefined}>{finding.text}</Finding>
+      {/* Takes the focus when a question is answered: the button that had it is gone, and this is what changed. */}
+      <div ref={said} tabIndex={-1} className="outline-none">
+        <Finding more={finding.second ?? undefined}>{finding.text}</Finding>
+      </div>
       <KeyFigures>
         <KeyFigure label="Frames" value={formatCount(ensemble.frames)} />
         {asks ? (

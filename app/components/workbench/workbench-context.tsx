@@ -100,7 +100,10 @@ export function WorkbenchProvider({
     [result, populations, state.windowKcal],
   );
   const roles = useMemo(() => (result ? frameRoles(result) : NO_ROLES), [result]);
-  const selected = useMemo(() => state.selected ?? (rows[0] ? [rows[0].frame] : []), [state.selected, rows]);
+  const selected = useMemo(
+    () => chosenFrames(state.selected, rows[0]?.frame ?? first, ensemble.frames),
+    [state.selected, rows, first, ensemble.frames],
+  );
 
   const select = useCallback<Workbench["select"]>(
     (frame, how, order) =>

@@ -9,6 +9,7 @@ import { searchOf, writeState } from "~/lib/url-state";
 import type { EnsembleView, IntakeView, SiftView } from "~/lib/views";
 import { recipeLine } from "~/lib/workbench/recipe-words";
 import { stations } from "~/lib/workbench/stations";
+import { DecisionsProvider } from "./decisions";
 import { FilePanel } from "./file-panel";
 import { RenameEnsemble } from "./rename-ensemble";
 import { SectionRail } from "./section-rail";
@@ -32,9 +33,11 @@ export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchDat
   const followed = useFollowedSift(sift);
   return (
     <WorkbenchProvider ensemble={ensemble} sift={followed} section={section} first={firstFrame(intake)}>
-      <Frame section={section} intake={intake}>
-        {children}
-      </Frame>
+      <DecisionsProvider ensembleId={ensemble.id}>
+        <Frame section={section} intake={intake}>
+          {children}
+        </Frame>
+      </DecisionsProvider>
     </WorkbenchProvider>
   );
 }
