@@ -5,6 +5,8 @@ import { angle, distance, torsion } from "./geometry.ts";
 /** What a pick of atoms measures: two a distance, three an angle, four a torsion; fewer nothing. */
 export type MeasureKind = "distance" | "angle" | "torsion";
 
+export const MEASURE_UNIT: Record<MeasureKind, "Å" | "°"> = { distance: "Å", angle: "°", torsion: "°" };
+
 export function measureKind(atoms: ArrayLike<number>): MeasureKind | null {
   if (atoms.length === 2) return "distance";
   if (atoms.length === 3) return "angle";
