@@ -64,8 +64,15 @@ export class FrameClassifier {
     }
     const trace = this.kinds.trace(frame.elements, frame.isotopes, frame.positions);
     const energy = frame.energy ?? null;
+    const { shape, kind, hands, near, closest, allZero, drawing } = trace;
     this.records.push({
-      ...trace,
+      shape,
+      kind,
+      hands,
+      near,
+      closest,
+      allZero,
+      drawing,
       frame: frame.frame,
       file: frame.file,
       line: frame.line,
