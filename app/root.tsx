@@ -76,7 +76,8 @@ export function Layout({ children }: { children: ReactNode }) {
         <meta name="viewport" content="width=device-width, initial-scale=1" />
         <meta name="color-scheme" content={theme ?? "light dark"} />
         <Meta />
-        <Links />
+        {/* Sheets of our own need no nonce; one that the browser hides from scripts would not match at hydration. */}
+        <Links nonce="" />
       </head>
       <body>
         {children}

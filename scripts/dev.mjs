@@ -6,6 +6,35 @@ import { makeServer } from "./lib/serve.mjs";
 const say = (text) => console.log(text);
 const SERVER_BUILD = "virtual:react-router/server-build";
 
+const BROWSER_PACKAGES = [
+  "react",
+  "react/jsx-runtime",
+  "react/jsx-dev-runtime",
+  "react-dom/client",
+  "react-router",
+  "react-router/dom",
+  "@tanstack/react-virtual",
+  "lucide-react",
+  "radix-ui",
+  "swr",
+  "zod",
+];
+
+/** Seen in route modules before the router takes their server halves out. */
+const SERVER_PACKAGES = [
+  "argon2",
+  "busboy",
+  "csv-stringify",
+  "drizzle-orm",
+  "mysql2",
+  "nodemailer",
+  "pino",
+  "piscina",
+  "remix-auth",
+  "remix-auth-form",
+  "zod-openapi",
+];
+
 const state = { stopping: null, database: null, application: null, http: null, vite: null };
 
 function stop(code) {
@@ -55,6 +84,8 @@ async function main() {
     root: ROOT,
     appType: "custom",
     server: { middlewareMode: true, hmr: { server: channel } },
+    // What is only found while a page loads makes that page load again, with errors in between.
+    optimizeDeps: { include: BROWSER_PACKAGES, exclude: SERVER_PACKAGES },
   });
   await watchWorker(state.vite);
   keepSignals();
