@@ -12,6 +12,11 @@ export function intColumns(text: string, from: number, to: number): number | nul
   return /^[+-]?\d+$/.test(piece) ? Number(piece) : null;
 }
 
+/** As `intColumns`, but null too where the columns are blank. */
+export function neededColumns(text: string, from: number, to: number): number | null {
+  return /\d/.test(text.slice(from, to)) ? intColumns(text, from, to) : null;
+}
+
 /** The text in columns `from` up to, not including, `to` (from 0), without blanks round it. */
 export function textColumns(text: string, from: number, to: number): string {
   return text.slice(from, to).replace(/^ +| +$/g, "");

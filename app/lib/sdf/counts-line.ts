@@ -1,4 +1,4 @@
-import { intColumns, textColumns } from "./columns.ts";
+import { intColumns, neededColumns, textColumns } from "./columns.ts";
 
 /** The fourth line of a MOL block. */
 export interface Counts {
@@ -28,9 +28,8 @@ const TAG_AT = 34;
 export function readCountsLine(text: string): CountsReading | null {
   if (isOverflow(text)) return { kind: "overflow" };
   const tag = textColumns(text, TAG_AT - 1, TAG_AT + 5).toUpperCase();
-  if (!/\d/.test(text.slice(0, 3))) return null;
-  const atoms = intColumns(text, 0, 3);
-  const bonds = intColumns(text, 3, 6);
+  const atoms = neededColumns(text, 0, 3);
+  const bonds = neededColumns(text, 3, 6);
   if (atoms === null || bonds === null || atoms < 0 || bonds < 0) return null;
   if (tag === "" && !/^[ \d]+$/.test(text)) return null;
   if (tag !== "" && tag !== "V2000" && tag !== "V3000") {

@@ -3,7 +3,7 @@ import { plainBlanksAndMinus } from "../intake/numbers.ts";
 import type { AtomFault } from "../xyz/atom-line.ts";
 import type { TextLine } from "../xyz/frame-builder.ts";
 import { bondTypeFault } from "./bond-types.ts";
-import { intColumns, textColumns } from "./columns.ts";
+import { intColumns, neededColumns, textColumns } from "./columns.ts";
 import { isFault, misplaced, readCoordinate, readSymbol } from "./faults.ts";
 import type { RecordBuilder } from "./record-builder.ts";
 
@@ -83,7 +83,7 @@ function takeMassDifference(builder: RecordBuilder, atom: number, difference: nu
 /** Reads the next bond line: two atoms and the type, three columns each. */
 export function takeBondLine(builder: RecordBuilder, line: TextLine): AtomFault | null {
   const { text } = line;
-  const [a, b, type] = [0, 3, 6].map((from) => intColumns(text, from, from + 3));
+  const [a, b, type] = [0, 3, 6].map((from) => neededColumns(text, from, from + 3));
   const bond = builder.bondsRead + 1;
   if (text.trim() === "" || a == null || b == null || type == null) {
     const message = `Here bond ${bond} of ${builder.bondCount} should stand: two atoms and the type, three columns each.`;
