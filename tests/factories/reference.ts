@@ -50,7 +50,8 @@ export interface ReferenceSet {
   pairs: ExpectedPair[];
 }
 
-const fixtures = fileURLToPath(new URL("../../fixtures/reference/", import.meta.url));
+/** Files that were copied. */
+export const fixtures = fileURLToPath(new URL("../../fixtures/reference/", import.meta.url));
 /** Published geometries that may not be copied lie beside the checkout, or nowhere. */
 export const beside = fileURLToPath(new URL("../../../shared/reference/", import.meta.url));
 export const besidePresent = existsSync(beside);
