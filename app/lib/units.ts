@@ -4,7 +4,7 @@
  */
 export const CONSTANTS_YEAR = "CODATA 2022";
 
-export const AVOGADRO_PER_MOL = 6.02214076e23;
+export const PARTICLES_PER_MOL = 6.02214076e23;
 export const GAS_CONSTANT_J = 8.31446261815324; // J/(mol K), exact
 export const JOULE_PER_CALORIE = 4.184;
 /** R in kcal/(mol K). */
@@ -24,13 +24,13 @@ export const ENERGY_UNITS = ["hartree", "kcal/mol", "kJ/mol", "eV", "meV", "cm-1
 export type EnergyUnit = (typeof ENERGY_UNITS)[number];
 
 const KJ_PER_MOL: Record<EnergyUnit, number> = {
-  hartree: (HARTREE_J * AVOGADRO_PER_MOL) / 1000,
+  hartree: (HARTREE_J * PARTICLES_PER_MOL) / 1000,
   "kcal/mol": JOULE_PER_CALORIE,
   "kJ/mol": 1,
-  eV: (ELEMENTARY_CHARGE_C * AVOGADRO_PER_MOL) / 1000,
-  meV: (ELEMENTARY_CHARGE_C * AVOGADRO_PER_MOL) / 1e6,
-  "cm-1": (PLANCK_J_S * LIGHT_M_S * 100 * AVOGADRO_PER_MOL) / 1000,
-  K: (BOLTZMANN_J_K * AVOGADRO_PER_MOL) / 1000,
+  eV: (ELEMENTARY_CHARGE_C * PARTICLES_PER_MOL) / 1000,
+  meV: (ELEMENTARY_CHARGE_C * PARTICLES_PER_MOL) / 1e6,
+  "cm-1": (PLANCK_J_S * LIGHT_M_S * 100 * PARTICLES_PER_MOL) / 1000,
+  K: (BOLTZMANN_J_K * PARTICLES_PER_MOL) / 1000,
 };
 
 /** kcal/mol in one `unit`. Subtract absolute energies in their own unit first, then convert the difference once. */

@@ -37,7 +37,7 @@ correcthorse correcthorsebattery correcthorsebatterystaple correct horse battery
 thequickbrownfox thequickbrown quickbrownfox lorem ipsum dolor loremipsumdolor loremipsum12 helloworld12 helloworld123 helloworld1234
 hello1234567 hello12345678 hellohello12 goodmorning1 goodmorning123 happybirthday happynewyear merrychristmas qwert12345qwert
 chemistry123 chemistry1234 chemistry12345 laboratory12 laboratory123 laboratory1234 molecule1234 molecules123 conformer123 conformer1234
-conformation conformation1 conformations conformational ensemble1234 ensembles123 boltzmann123 boltzmann1234 schrodinger1 schroedinger
+conformation conformation1 conformations conformational ensemble1234 ensembles123 boltzmann123 boltzmann1234 periodictable
 `
     .trim()
     // Entries are one to a blank; the few with blanks inside are compared without them as well.
