@@ -1,34 +1,15 @@
-import { and, asc, eq, isNull, ne, or } from "drizzle-orm";
+import { and, eq, isNull } from "drizzle-orm";
 import { inTransaction, type Transaction } from "../../db/client.server.ts";
-import {
-  ensembleFiles,
-  ensembles,
-  frames,
-  intakeMessages,
-  questions as questionTable,
-} from "../../db/schema.server.ts";
-import type { Configuration } from "../../lib/chem/stereo.ts";
+import { ensembles, questions as questionTable } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
-import { decideEnergies, type EnergyAnswers, NO_ENERGY } from "../../lib/intake/decide-energies.ts";
 import type { IntakeQuestion } from "../../lib/intake/report.ts";
-import { settleEnergies } from "../../lib/intake/settle-energies.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
-import {
-  chiralityOf,
-  countFrames,
-  insertColumns,
-  insertMessages,
-  insertQuestions,
-  levelsInUse,
-  releaseAnswered,
-  remarkFrames,
-} from "./intake-rows.server.ts";
+import { countFrames } from "./intake-rows.server.ts";
 import { findQuestions } from "./load-intake.server.ts";
-import { unpackMolecule } from "./molecule.server.ts";
-import { scanComments } from "./scan-comments.server.ts";
+import { type EnsembleRow, settleAnswers } from "./settle-answers.server.ts";
 import { siftAfterIntake } from "./sift-after-intake.server.ts";
 
 export interface Answer {
@@ -37,7 +18,6 @@ export interface Answer {
 }
 
 type At = Grant & { ensembleId: string };
-type EnsembleRow = typeof ensembles.$inferSelect;
 
 function invalid(message: string): DomainError {
   return new DomainError("invalid", "This is no answer", message, {
@@ -54,20 +34,6 @@ async function lockEnsemble(tx: Transaction, at: At): Promise<EnsembleRow> {
   const row = rows[0];
   if (row === undefined) throw notFound();
   return row;
-}
-
-/** What is known so far: the request's own answers, and what was asked and answered since. */
-function answersSoFar(ensemble: EnsembleRow, asked: readonly IntakeQuestion[]): EnergyAnswers {
-  const answered = (id: string) => asked.find((question) => question.id === id)?.answered ?? null;
-  const unit = answered("energy-unit");
-  const { answers } = ensemble;
-  return {
-    energyFrom: unit === NO_ENERGY ? NO_ENERGY : (answered("energy-from") ?? answers.energyFrom),
-    energyUnit: unit ?? answers.energyUnit,
-    level: answered("level") ?? answers.level,
-    energyKind: answers.energyKind,
-    energyTemperature: answers.energyTemperature,
-  };
 }
 
 const MAX_LEVEL = 120;
@@ -113,79 +79,6 @@ async function markAnswered(
     .where(and(eq(questionTable.ensembleId, at.ensembleId), eq(questionTable.id, question.id)));
 }
 
-/** Decides again with what is known now: more to ask, or the column and the release of what waited. */
-async function settle(tx: Transaction, at: At, ensemble: EnsembleRow): Promise<number> {
-  const asked = await findQuestions(at.ensembleId, tx);
-  const answers = answersSoFar(ensemble, asked);
-  const files = await tx
-    .select({ name: ensembleFiles.name })
-    .from(ensembleFiles)
-    .where(eq(ensembleFiles.ensembleId, at.ensembleId))
-    .orderBy(asc(ensembleFiles.position));
-  const named = answers.energyFrom === NO_ENERGY ? null : answers.energyFrom;
-  const scanned = await scanComments(
-    at.ensembleId,
-    files.map((file) => file.name),
-    named,
-    tx,
-  );
-  const waiting = await waitingOrAccepted(tx, at.ensembleId);
-  const findings = scanned.scan.finish((frame) => waiting.has(frame));
-  const graph = unpackMolecule(ensemble);
-  const decision = decideEnergies(findings, graph.elements, answers, {
-    refuseOpen: false,
-    confirmUnit: ensemble.createdByToken === null,
-    knownLevels: await levelsInUse(at.teamId),
-    comment: scanned.firstComment,
-  });
-  if (decision.kind === "ask") {
-    const open = new Set(asked.filter(({ answered }) => answered === undefined).map(({ id }) => id));
-    await insertQuestions(
-      tx,
-      at.ensembleId,
-      decision.questions.filter(({ id }) => !open.has(id)),
-    );
-    return 0;
-  }
-  // A question that became pointless, such as the level of what is no energy, goes.
-  await tx
-    .delete(questionTable)
-    .where(and(eq(questionTable.ensembleId, at.ensembleId), isNull(questionTable.answered)));
-  const settled = settleEnergies(decision, {
-    candidates: findings.candidates,
-    answers,
-    kindStated: answers.energyKind !== "electronic",
-    extended: scanned.extended,
-    frames: ensemble.frames,
-    accepted: (frame) => waiting.has(frame),
-  });
-  await insertColumns(tx, at.ensembleId, settled.columns);
-  const released = await releaseAnswered(tx, at.ensembleId);
-  await remarkFrames(tx, at.ensembleId, settled.messages);
-  await tx
-    .delete(intakeMessages)
-    .where(and(eq(intakeMessages.ensembleId, at.ensembleId), eq(intakeMessages.severity, "question")));
-  await insertMessages(tx, at.ensembleId, settled.messages);
-  const energies = settled.columns.find((column) => column.kind === "energy") ?? null;
-  const { configuration } = ensemble.identity as { configuration: Configuration };
-  const chirality = await chiralityOf(tx, at.ensembleId, graph, configuration, energies);
-  await tx.update(ensembles).set(chirality).where(eq(ensembles.id, at.ensembleId));
-  return released;
-}
-
-async function waitingOrAccepted(tx: Transaction, ensembleId: string): Promise<Set<number>> {
-  const rows = await tx
-    .select({ number: frames.number })
-    .from(frames)
-    .where(
-      and(
-        eq(frames.ensembleId, ensembleId),
-        or(ne(frames.state, "held"), eq(frames.holdReason, "waits-for-answer")),
-      ),
-    );
-  return new Set(rows.map((row) => row.number));
-}
-
 async function refresh(tx: Transaction, at: At, ensemble: EnsembleRow): Promise<void> {
   const open = (await findQuestions(at.ensembleId, tx)).filter(({ answered }) => answered === undefined);
   await tx
@@ -220,7 +113,7 @@ async function answerAll(tx: Transaction, at: At, answers: readonly Answer[]): P
       );
     }
     await markAnswered(tx, at, question, kept);
-    await record(tx, at, question, kept, await settle(tx, at, ensemble));
+    await record(tx, at, question, kept, await settleAnswers(tx, ensemble));
   }
   await refresh(tx, at, ensemble);
 }

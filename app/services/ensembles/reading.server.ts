@@ -10,11 +10,10 @@ import { type Classification, FrameClassifier } from "../../lib/intake/classify.
 import { EnergyScan } from "../../lib/intake/energies.ts";
 import { formatMessage } from "../../lib/intake/format-message.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
-import { IntakeRejection } from "../../lib/intake/reject.ts";
-import { SNIFF_BYTES, sniff } from "../../lib/text/sniff.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
 import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
 import { BlockWriter } from "./block-writer.server.ts";
+import { checkFormat } from "./check-format.ts";
 import { type FrameDecision, FrameWriter, writeDecisions } from "./frame-writer.server.ts";
 import { openFile } from "./open-file.server.ts";
 
@@ -136,7 +135,7 @@ export class Reading {
     });
     const position = this.files.length;
     const before = this.frames;
-    for await (const chunk of this.sniffed(name, file.bytes)) {
+    for await (const chunk of checkFormat(name, file.bytes, remark)) {
       for (let at = 0; at < chunk.length; at += PIECE_BYTES) {
         await this.takeAll(position, reader.push(chunk.subarray(at, at + PIECE_BYTES)));
       }
@@ -145,48 +144,6 @@ export class Reading {
     this.messages.addAll(reader.messages);
     const format = file.packed ? "XYZ, gzip" : "XYZ";
     this.files.push({ position, name, format, firstFrame: before + 1, frames: this.frames - before });
-  }
-
-  /** Holds the first bytes back until they say what the file is. */
-  private async *sniffed(name: string, bytes: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8Array> {
-    let head: Uint8Array | null = new Uint8Array(0);
-    for await (const chunk of bytes) {
-      if (head === null) yield chunk;
-      else {
-        head = Buffer.concat([head, chunk]);
-        if (head.length < SNIFF_BYTES) continue;
-        this.checkFormat(name, head);
-        yield head;
-        head = null;
-      }
-    }
-    if (head === null) return;
-    this.checkFormat(name, head);
-    yield head;
-  }
-
-  private checkFormat(name: string, head: Uint8Array): void {
-    const found = sniff(head, name);
-    if (found.refusal) throw new IntakeRejection({ file: name, ...found.refusal });
-    if (found.container !== "none" || found.format === "sdf" || found.format === "csv") {
-      const what = {
-        sdf: "SDF",
-        csv: "a table",
-        zip: "a zip archive",
-        gzip: "gzip",
-        none: "",
-        xyz: "",
-        unknown: "",
-      };
-      const is = found.container === "none" ? what[found.format] : what[found.container];
-      throw new IntakeRejection({
-        code: "G10",
-        file: name,
-        message: `This is ${is}. This version reads XYZ and extended XYZ, plain or gzip.`,
-        hint: "Write the structures as XYZ and send them again.",
-      });
-    }
-    if (found.remark) this.messages.add({ ...found.remark, severity: "remark", file: name });
   }
 
   private async takeAll(file: number, found: XyzFrame[]): Promise<void> {

@@ -1,0 +1,147 @@
+import { and, asc, eq, isNull, ne, or } from "drizzle-orm";
+import type { Transaction } from "../../db/client.server.ts";
+import {
+  ensembleFiles,
+  ensembles,
+  frames,
+  intakeMessages,
+  questions as questionTable,
+} from "../../db/schema.server.ts";
+import type { Configuration } from "../../lib/chem/stereo.ts";
+import {
+  decideEnergies,
+  type EnergyAnswers,
+  type EnergyDecision,
+  NO_ENERGY,
+} from "../../lib/intake/decide-energies.ts";
+import type { IntakeQuestion } from "../../lib/intake/report.ts";
+import { type SettledEnergies, settleEnergies } from "../../lib/intake/settle-energies.ts";
+import type { Graph } from "../../lib/structure.ts";
+import {
+  chiralityOf,
+  insertColumns,
+  insertMessages,
+  insertQuestions,
+  levelsInUse,
+  releaseAnswered,
+  remarkFrames,
+} from "./intake-rows.server.ts";
+import { findQuestions } from "./load-intake.server.ts";
+import { unpackMolecule } from "./molecule.server.ts";
+import { scanComments } from "./scan-comments.server.ts";
+
+export type EnsembleRow = typeof ensembles.$inferSelect;
+
+/** What is known so far: the request's own answers, and what was asked and answered since. */
+function answersSoFar(ensemble: EnsembleRow, asked: readonly IntakeQuestion[]): EnergyAnswers {
+  const answered = (id: string) => asked.find((question) => question.id === id)?.answered ?? null;
+  const unit = answered("energy-unit");
+  const { answers } = ensemble;
+  return {
+    energyFrom: unit === NO_ENERGY ? NO_ENERGY : (answered("energy-from") ?? answers.energyFrom),
+    energyUnit: unit ?? answers.energyUnit,
+    level: answered("level") ?? answers.level,
+    energyKind: answers.energyKind,
+    energyTemperature: answers.energyTemperature,
+  };
+}
+
+/** Frames that take part once nothing is open. */
+async function waitingOrAccepted(tx: Transaction, ensembleId: string): Promise<Set<number>> {
+  const rows = await tx
+    .select({ number: frames.number })
+    .from(frames)
+    .where(
+      and(
+        eq(frames.ensembleId, ensembleId),
+        or(ne(frames.state, "held"), eq(frames.holdReason, "waits-for-answer")),
+      ),
+    );
+  return new Set(rows.map((row) => row.number));
+}
+
+async function fileNames(tx: Transaction, ensembleId: string): Promise<string[]> {
+  const files = await tx
+    .select({ name: ensembleFiles.name })
+    .from(ensembleFiles)
+    .where(eq(ensembleFiles.ensembleId, ensembleId))
+    .orderBy(asc(ensembleFiles.position));
+  return files.map((file) => file.name);
+}
+
+interface Decided {
+  decision: EnergyDecision;
+  /** Null while something is open. */
+  settled: SettledEnergies | null;
+  graph: Graph;
+}
+
+/** The decision with all answers so far, from the stored comment lines. */
+async function decide(
+  tx: Transaction,
+  ensemble: EnsembleRow,
+  asked: readonly IntakeQuestion[],
+): Promise<Decided> {
+  const answers = answersSoFar(ensemble, asked);
+  const named = answers.energyFrom === NO_ENERGY ? null : answers.energyFrom;
+  const scanned = await scanComments(ensemble.id, await fileNames(tx, ensemble.id), named, tx);
+  const used = await waitingOrAccepted(tx, ensemble.id);
+  const accepted = (frame: number) => used.has(frame);
+  const findings = scanned.scan.finish(accepted);
+  const graph = unpackMolecule(ensemble);
+  const decision = decideEnergies(findings, graph.elements, answers, {
+    refuseOpen: false,
+    confirmUnit: ensemble.createdByToken === null,
+    knownLevels: await levelsInUse(ensemble.teamId),
+    comment: scanned.firstComment,
+  });
+  if (decision.kind === "ask") return { decision, settled: null, graph };
+  const settled = settleEnergies(decision, {
+    candidates: findings.candidates,
+    answers,
+    kindStated: answers.energyKind !== "electronic",
+    extended: scanned.extended,
+    frames: ensemble.frames,
+    accepted,
+  });
+  return { decision, settled, graph };
+}
+
+/** Writes the columns and releases what waited; returns how many frames that were. */
+async function writeSettled(
+  tx: Transaction,
+  ensemble: EnsembleRow,
+  settled: SettledEnergies,
+  graph: Graph,
+): Promise<number> {
+  const { id } = ensemble;
+  // A question that became pointless, such as the level of what is no energy, goes.
+  await tx.delete(questionTable).where(and(eq(questionTable.ensembleId, id), isNull(questionTable.answered)));
+  await insertColumns(tx, id, settled.columns);
+  const released = await releaseAnswered(tx, id);
+  await remarkFrames(tx, id, settled.messages);
+  await tx
+    .delete(intakeMessages)
+    .where(and(eq(intakeMessages.ensembleId, id), eq(intakeMessages.severity, "question")));
+  await insertMessages(tx, id, settled.messages);
+  const energies = settled.columns.find((column) => column.kind === "energy") ?? null;
+  const { configuration } = ensemble.identity as { configuration: Configuration };
+  const chirality = await chiralityOf(tx, id, graph, configuration, energies);
+  await tx.update(ensembles).set(chirality).where(eq(ensembles.id, id));
+  return released;
+}
+
+/**
+ * Decides again with what is known now: more to ask, or the columns and the release of what waited.
+ *
+ * @returns how many frames were released
+ */
+export async function settleAnswers(tx: Transaction, ensemble: EnsembleRow): Promise<number> {
+  const asked = await findQuestions(ensemble.id, tx);
+  const { decision, settled, graph } = await decide(tx, ensemble, asked);
+  if (settled !== null) return writeSettled(tx, ensemble, settled, graph);
+  const open = new Set(asked.filter(({ answered }) => answered === undefined).map(({ id }) => id));
+  const more = decision.kind === "ask" ? decision.questions.filter(({ id }) => !open.has(id)) : [];
+  await insertQuestions(tx, ensemble.id, more);
+  return 0;
+}

@@ -1,0 +1,42 @@
+import { type UploadFields, uploadFieldsSchema } from "../../lib/api/schemas.ts";
+import { DomainError } from "../../lib/errors.ts";
+
+/** 422 of an upload with the field at fault. */
+export function invalidField(field: string, message: string): DomainError {
+  return new DomainError("invalid", "The upload is not right", message, { faults: [{ field, message }] });
+}
+
+/** The fields of a form beside its files, each once. */
+export class FormFields {
+  private readonly values: Record<string, string> = Object.create(null);
+  private readonly allowed: ReadonlySet<string>;
+
+  constructor(interactive: boolean) {
+    this.allowed = new Set([...Object.keys(uploadFieldsSchema.shape), ...(interactive ? ["team"] : [])]);
+  }
+
+  add(name: string, value: string): void {
+    if (!this.allowed.has(name)) {
+      throw invalidField(name, `There is no field "${name}". Files go into "file".`);
+    }
+    if (name in this.values) throw invalidField(name, `The field "${name}" stands twice.`);
+    // A form sends what was left empty too.
+    if (value.trim() !== "") this.values[name] = value;
+  }
+
+  get(name: string): string | null {
+    return this.values[name] ?? null;
+  }
+
+  check(): UploadFields {
+    const { team: _, ...rest } = this.values;
+    const read = uploadFieldsSchema.safeParse(rest);
+    if (read.success) return read.data;
+    const faults = read.error.issues.map((issue) => ({
+      field: issue.path.join("."),
+      message: issue.message,
+    }));
+    const detail = faults.map((fault) => `${fault.field}: ${fault.message}`).join(" ");
+    throw new DomainError("invalid", "The upload is not right", detail, { faults });
+  }
+}
