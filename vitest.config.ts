@@ -13,6 +13,8 @@ const env = {
   OPEN_SIGN_UP: "",
   SMTP_URL: "",
   TRUST_PROXY: "",
+  // Apart from what a running application has loaded.
+  WORKER_DIRECTORY: ".worker/tests",
 };
 
 export default defineConfig({

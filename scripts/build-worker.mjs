@@ -1,12 +1,17 @@
 // Bundles the computing thread into .worker/, a folder of its own: `react-router build` empties build/.
+import { mkdirSync, renameSync, writeFileSync } from "node:fs";
+import path from "node:path";
 import { fileURLToPath } from "node:url";
 import { build } from "esbuild";
 
 const root = fileURLToPath(new URL("..", import.meta.url));
 
-/** Builds `.worker/compute.worker.mjs`; safe to run at any time, a running pool keeps what it has loaded. */
+/**
+ * Builds `compute.worker.mjs` into WORKER_DIRECTORY, by default `.worker`. Safe to run at any time and several times at
+ * once: a running pool keeps what it has loaded, and nobody ever loads half a file.
+ */
 export async function buildWorker() {
-  await build({
+  const { outputFiles } = await build({
     absWorkingDir: root,
     entryPoints: { "compute.worker": "app/workers/compute.worker.ts" },
     outdir: process.env.WORKER_DIRECTORY || ".worker",
@@ -18,7 +23,14 @@ export async function buildWorker() {
     packages: "external",
     sourcemap: true,
     logLevel: "warning",
+    write: false,
   });
+  for (const { path: file, contents } of outputFiles) {
+    mkdirSync(path.dirname(file), { recursive: true });
+    const fresh = `${file}.${process.pid}`;
+    writeFileSync(fresh, contents);
+    renameSync(fresh, file);
+  }
 }
 
 if (process.argv[1] === fileURLToPath(import.meta.url)) await buildWorker();
