@@ -10,7 +10,7 @@ export function FilePanel() {
   const guest = ensemble.role === "guest";
   return (
     <section className="mt-6">
-      <h3 className="text-sm font-semibold">{ensemble.files.length === 1 ? "File" : "Files"}</h3>
+      <h2 className="text-sm font-semibold">{ensemble.files.length === 1 ? "File" : "Files"}</h2>
       <ul className="mt-2">
         {ensemble.files.map((file) => (
           <li key={file.position} className="figures grid gap-1 border-t border-rule py-3 last:border-b">

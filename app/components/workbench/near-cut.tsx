@@ -49,7 +49,7 @@ export function NearestPairs() {
               <Tr key={`${a} ${b}`}>
                 <Td>
                   <TextButton
-                    className="text-ink no-underline hover:underline"
+                    className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
                     onClick={() => show([rows[a]?.frame ?? 0, rows[b]?.frame ?? 0])}
                   >
                     {rows[a]?.name} and {rows[b]?.name}

@@ -242,8 +242,9 @@ describe("findings in words", () => {
       text: `c1 alone carries 99${NBSP}% of the ensemble at 298.15${NBSP}K.`,
       second: `Next comes c2 with 0.63${NBSP}%.`,
     });
+    // A hundred alike: 1 % each, fifty of them make half.
     expect(at(Array.from({ length: 100 }, () => 0)).text).toBe(
-      `No shape holds 5${NBSP}% of the ensemble at 298.15${NBSP}K: the ten most populated share 10${NBSP}%.`,
+      `It takes 50 shapes to hold half of the ensemble at 298.15${NBSP}K: the most populated, c1, has 1${NBSP}%.`,
     );
   });
 

@@ -35,7 +35,7 @@ const CARRIES = 0.05;
 export function shareWords(fraction: number): string {
   if (fraction >= 1 - 1e-12) return formatPercent(1);
   if (fraction >= 0.995) return `more than ${formatPercent(0.99)}`;
-  if (fraction >= 0.01) return formatPercent(fraction);
+  if (fraction >= 0.00995) return formatPercent(fraction);
   if (fraction >= 0.001) return formatPercent(fraction, 2);
   if (fraction >= 0.0001) return formatPercent(fraction, 3);
   return fraction > 0 ? `below ${formatPercent(0.0001, 2)}` : formatPercent(0);
@@ -59,12 +59,12 @@ export function populationsFinding(rows: readonly ConformerRow[], temperatureK: 
   const carrying = ranked.filter((row) => (row.population ?? 0) >= CARRIES);
   const sum = (some: readonly ConformerRow[]) =>
     some.reduce((total, row) => total + (row.population ?? 0), 0);
-  if (carrying.length === 0) {
-    const some = ranked.slice(0, 10);
+  if (sum(carrying) < 0.5) {
+    const half = countToShare(ranked, 0.5);
     return {
       text:
-        `No shape holds ${formatPercent(CARRIES)} of the ensemble ${at}: ` +
-        `the ${countWord(some.length)} most populated share ${shareWords(sum(some))}.`,
+        `It takes ${countWord(half)} shapes to hold half of the ensemble ${at}: ` +
+        `the most populated, ${first.name}, has ${shareWords(first.population)}.`,
       second: null,
     };
   }
@@ -81,6 +81,18 @@ export function populationsFinding(rows: readonly ConformerRow[], temperatureK: 
       `${first.name} alone ${shareWords(first.population)}.`,
     second: null,
   };
+}
+
+/** How many of the most populated it takes to reach a share. */
+function countToShare(ranked: readonly ConformerRow[], share: number): number {
+  let held = 0;
+  let count = 0;
+  for (const row of ranked) {
+    held += row.population ?? 0;
+    count += 1;
+    if (held >= share - 1e-12) break;
+  }
+  return count;
 }
 
 /** What lies above the window that the reader set, and what the sift's own window may have cut off. */
