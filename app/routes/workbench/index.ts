@@ -15,3 +15,8 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
     : href("/ensembles/:id/intake", { id: ensemble.id });
   return redirect(to + url.search);
 }
+
+/** Never seen; with it, a refusal is shown as a page and not as bare data. */
+export default function Index() {
+  return null;
+}
