@@ -3,12 +3,14 @@ import { fixed, formatEnergy, formatPopulation, plural, withUnit } from "~/lib/f
 import { thermalEnergyKcal } from "~/lib/units";
 import type { ConformerRow, Outside } from "~/lib/workbench/conformers";
 import { shareWords, thermalLabel } from "~/lib/workbench/findings";
-import { type Ladder, mergeLabels } from "~/lib/workbench/ladder";
+import { type Ladder, mergeLabels, type PlacedLabel } from "~/lib/workbench/ladder";
 import { ChartFrame } from "./chart-frame";
 import { ChartText, type Choose, Plot, usePlot } from "./plot";
 
 const BAR = 6;
 const NAMED = 6;
+/** Width of a letter at 12 px, near enough to see whether a label fits. */
+const LETTER_PX = 6.6;
 
 /** Relative energy against population: a rung a conformer, as long as its population, the lowest at the bottom. */
 export function EnergyLadder({
@@ -143,11 +145,22 @@ function LadderLayer({
       />
       <CurveLabel ladder={ladder} />
       {mergeLabels(marks).map((label) => (
-        <ChartText key={label.names.join()} x={label.x + 8} y={label.y + 4} tone="ink" halo>
-          {label.names.join(", ")}
-        </ChartText>
+        <RungLabel key={label.names.join()} label={label} right={plot.right} />
       ))}
     </g>
+  );
+}
+
+/** Names at the end of their rungs; many at one height are counted, and none runs out of the figure. */
+function RungLabel({ label, right }: { label: PlacedLabel; right: number }) {
+  const { names, x, y } = label;
+  const text =
+    names.length <= 3 ? names.join(", ") : `${names.slice(0, 2).join(", ")} and ${names.length - 2} more`;
+  const fits = x + 8 + text.length * LETTER_PX <= right + LETTER_PX;
+  return (
+    <ChartText x={fits ? x + 8 : right} y={fits ? y + 4 : y - 8} end={!fits} tone="ink" halo>
+      {text}
+    </ChartText>
   );
 }
 

@@ -311,7 +311,7 @@ const ConformerLine = memo(function ConformerLine({
         onPointerLeave={() => setHovered(null)}
       >
         <Td>
-          <span className="inline-flex items-center gap-1">
+          <span className="flex items-center gap-1">
             <IconButton
               label={`${open ? "Less" : "More"} of ${row.name}`}
               aria-expanded={open}

@@ -203,7 +203,7 @@ function KeptRow({
         onPointerLeave={() => setHovered(null)}
       >
         <Td>
-          <span className="inline-flex items-center gap-1">
+          <span className="flex items-center gap-1">
             {repeats.length > 0 ? (
               <IconButton
                 label={`${plural(repeats.length, "repeat")} of ${row.name}`}

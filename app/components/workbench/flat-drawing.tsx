@@ -2,7 +2,7 @@ import { useEffect, useState } from "react";
 import { symbolOf } from "~/lib/chem/elements";
 import { type FlatDrawing, type FlatLabel, flatLayout } from "~/lib/workbench/flat-layout";
 
-const BOX = { width: 200, height: 84 };
+const BOX = { width: 240, height: 92 };
 const HUES: Record<number, string> = {
   1: "fill-atom-h",
   6: "fill-atom-c",

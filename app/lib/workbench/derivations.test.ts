@@ -3,7 +3,7 @@ import { describe, expect, test } from "vitest";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { KeptConformer, SiftResult } from "../recipe/result.ts";
 import { distinctPopulations } from "../thermo/populations.ts";
-import type { EnsembleView, FrameView } from "../views.ts";
+import type { EnsembleView, FrameView, SiftView } from "../views.ts";
 import { conformerRows, frameRoles, outsideWindow } from "./conformers.ts";
 import { cumulativePopulation, withinWindow } from "./cumulative.ts";
 import {
@@ -23,6 +23,7 @@ import { energyLadder, mergeLabels } from "./ladder.ts";
 import { methodsText, recipeLine, requestOf } from "./recipe-words.ts";
 import { clickSelection } from "./selection.ts";
 import { sortRows } from "./sort-rows.ts";
+import { stations } from "./stations.ts";
 import { roundTicks, tickDigits } from "./ticks.ts";
 import { toCsv, toTsv } from "./tsv.ts";
 import { viewPlan } from "./view-plan.ts";
@@ -538,5 +539,47 @@ describe("lists of intake", () => {
   test("every reason has its words", () => {
     expect(reasonWords("other-species")).toBe("Another species");
     expect(reasonWords(null)).toBe("Held");
+  });
+});
+
+describe("stations of the course line", () => {
+  const sift: SiftView = {
+    id: "eeeeeeeeeeeeeeee",
+    status: "done",
+    progress: 1,
+    recipe,
+    result,
+    error: null,
+    createdAt: "2026-12-01T12:00:00Z",
+    current: true,
+  };
+  const figures = (e: EnsembleView, s: SiftView | null) =>
+    stations(e, s, 298.15).map((station) => `${station.path}: ${station.figure}, ${station.state}`);
+
+  test("each section has its one figure", () => {
+    expect(figures(ensemble, sift)).toEqual([
+      "intake: 397 of 400, 3 held, care",
+      "distinct-set: 4 of 7, done",
+      `populations: 298.15${NBSP}K, done`,
+      "hand-over: CSV, XYZ, JSON, done",
+      "logbook: who did what, done",
+    ]);
+  });
+
+  test("before there are results they say what comes first", () => {
+    expect(figures({ ...ensemble, openQuestions: 2 }, null).slice(0, 3)).toEqual([
+      "intake: 2 questions open, care",
+      "distinct-set: after intake, todo",
+      "populations: after intake, todo",
+    ]);
+    expect(figures(ensemble, { ...sift, status: "running", result: null })[1]).toBe(
+      "distinct-set: under way, todo",
+    );
+    expect(figures(ensemble, null)[1]).toBe("distinct-set: not yet, todo");
+  });
+
+  test("a set in file order has no populations", () => {
+    const bare = { ...sift, recipe: { ...recipe, level: null, levelName: null } };
+    expect(figures(ensemble, bare)[2]).toBe("populations: no energies, todo");
   });
 });
