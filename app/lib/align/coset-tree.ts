@@ -52,15 +52,65 @@ export class CosetTree {
     this.yo = yo;
     this.hand = hand;
     const { rootSingles, rootCells, n } = this.plan;
-    const m = this.m;
-    m.fill(0, 0, 9);
-    for (const k of rootSingles) addOuter(m, 0, x, xo + 3 * k, y, yo + 3 * k, hand);
-    let slack = 0;
-    for (const c of rootCells) {
-      const t = 4 * n + 1 + 4 * c;
-      addOuter(m, 0, x, xo + t, y, yo + t, hand / this.countOf(c));
-      slack += x[xo + t + 3]! * y[yo + t + 3]!;
+    let m0 = 0;
+    let m1 = 0;
+    let m2 = 0;
+    let m3 = 0;
+    let m4 = 0;
+    let m5 = 0;
+    let m6 = 0;
+    let m7 = 0;
+    let m8 = 0;
+    for (let s = 0; s < rootSingles.length; s++) {
+      const k = 3 * rootSingles[s]!;
+      const a = x[xo + k]!;
+      const b = x[xo + k + 1]!;
+      const c = x[xo + k + 2]!;
+      const p = y[yo + k]!;
+      const q = y[yo + k + 1]!;
+      const r = y[yo + k + 2]!;
+      m0 += a * p;
+      m1 += a * q;
+      m2 += a * r;
+      m3 += b * p;
+      m4 += b * q;
+      m5 += b * r;
+      m6 += c * p;
+      m7 += c * q;
+      m8 += c * r;
     }
+    let slack = 0;
+    for (let s = 0; s < rootCells.length; s++) {
+      const cell = rootCells[s]!;
+      const k = 4 * n + 1 + 4 * cell;
+      const share = 1 / this.countOf(cell);
+      const a = share * x[xo + k]!;
+      const b = share * x[xo + k + 1]!;
+      const c = share * x[xo + k + 2]!;
+      const p = y[yo + k]!;
+      const q = y[yo + k + 1]!;
+      const r = y[yo + k + 2]!;
+      m0 += a * p;
+      m1 += a * q;
+      m2 += a * r;
+      m3 += b * p;
+      m4 += b * q;
+      m5 += b * r;
+      m6 += c * p;
+      m7 += c * q;
+      m8 += c * r;
+      slack += x[xo + k + 3]! * y[yo + k + 3]!;
+    }
+    const m = this.m;
+    m[0] = hand * m0;
+    m[1] = hand * m1;
+    m[2] = hand * m2;
+    m[3] = hand * m3;
+    m[4] = hand * m4;
+    m[5] = hand * m5;
+    m[6] = hand * m6;
+    m[7] = hand * m7;
+    m[8] = hand * m8;
     this.slack[0] = slack;
   }
 

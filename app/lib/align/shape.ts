@@ -36,7 +36,24 @@ function writeDistances(plan: SymmetryPlan, shape: Float64Array, at: number): vo
     for (let j = plan.cellStarts[c]!; j < plan.cellStarts[c + 1]!; j++) {
       shape[next++] = Math.sqrt(squareOf(shape, at + 3 * plan.cellAtoms[j]!));
     }
-    shape.subarray(first, next).sort();
+    sortRange(shape, first, next);
+  }
+}
+
+/** Sorts a short run of numbers in place; orbits are small, and a call of the library's sort costs more than they. */
+function sortRange(numbers: Float64Array, from: number, to: number): void {
+  if (to - from > 32) {
+    numbers.subarray(from, to).sort();
+    return;
+  }
+  for (let k = from + 1; k < to; k++) {
+    const value = numbers[k]!;
+    let at = k;
+    while (at > from && numbers[at - 1]! > value) {
+      numbers[at] = numbers[at - 1]!;
+      at -= 1;
+    }
+    numbers[at] = value;
   }
 }
 

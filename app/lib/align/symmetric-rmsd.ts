@@ -72,8 +72,23 @@ export class SymmetricRmsd {
     tolerance: number,
     mirror: boolean,
   ): Comparison | null {
+    if (distancesExceed(this.plan, x, xo, y, yo, tolerance)) {
+      this.cut = false;
+      return null;
+    }
+    return this.decideNear(x, xo, y, yo, tolerance, mirror);
+  }
+
+  /** `decide` for shapes whose distances from the centroid have been compared before. */
+  decideNear(
+    x: Float64Array,
+    xo: number,
+    y: Float64Array,
+    yo: number,
+    tolerance: number,
+    mirror: boolean,
+  ): Comparison | null {
     this.cut = false;
-    if (distancesExceed(this.plan, x, xo, y, yo, tolerance)) return null;
     const n = this.plan.n;
     const spread = x[xo + 3 * n]! + y[yo + 3 * n]!;
     // The last term lets a single atom, all of whose sums are 0, pass at tolerance 0.

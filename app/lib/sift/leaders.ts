@@ -1,14 +1,16 @@
 import type { SymmetryPlan } from "../align/plan.ts";
-import { profileLength, profilesExceed, squareLimit, writeProfile, writeShape } from "../align/shape.ts";
+import { profileLength, squareLimit, writeProfile, writeShape } from "../align/shape.ts";
 import { SymmetricRmsd } from "../align/symmetric-rmsd.ts";
 import { SymmetryNumber } from "../align/symmetry-number.ts";
 import type { FrameBlock } from "../structure.ts";
 import { SiftCancelled, type SiftHooks } from "./hooks.ts";
+import { INDEX_DIRECTIONS, LeaderIndex } from "./leader-index.ts";
+import { principalDirections } from "./principal.ts";
 import { ShapeStore } from "./shape-store.ts";
 import type { SiftEnergies, Walk } from "./walk.ts";
 
-/** Pairs between two looks at the `cancelled` hook. */
-const PAIRS_A_LOOK = 1024;
+/** Frames whose profiles show along which directions the ensemble spreads. */
+const SAMPLE = 128;
 /** Search nodes of a whole sift after which single comparisons get fewer, so that no molecule makes it endless. */
 const GENEROUS_NODES = 100e6;
 const GENEROUS_SYMMETRY_NODES = 5e6;
@@ -47,7 +49,7 @@ export interface Follower {
 export interface Leaders {
   leaders: Leader[];
   followers: Follower[];
-  /** Pairs whose geometry was compared, by bounds or in full. */
+  /** Pairs whose geometry was compared, by bounds (some of many pairs at once) or in full. */
   pairs: number;
 }
 
@@ -73,9 +75,8 @@ export function findLeaders(
 class LeaderWalk {
   private readonly comparer: SymmetricRmsd;
   private readonly symmetry: SymmetryNumber;
+  private readonly index: LeaderIndex;
   private readonly store: ShapeStore;
-  /** Profiles of the leaders, apart from their shapes: most pairs need no more, and these stay in the cache. */
-  private readonly profiles: ShapeStore;
   private readonly shape: Float64Array;
   private readonly profile: Float64Array;
   private readonly wholeShape: Float64Array;
@@ -95,17 +96,31 @@ class LeaderWalk {
     this.comparer = new SymmetricRmsd(plan);
     this.symmetry = new SymmetryNumber(whole);
     this.store = new ShapeStore(plan.shapeLength);
-    this.profiles = new ShapeStore(profileLength(plan));
     this.shape = new Float64Array(plan.shapeLength);
     this.profile = new Float64Array(profileLength(plan));
     this.wholeShape = new Float64Array(whole.shapeLength);
+    this.index = new LeaderIndex(plan.n, this.directions(), squareLimit(plan.n, rule.rmsdTolerance));
+  }
+
+  /** Along which the profiles of some frames, spread over the walk, differ most. */
+  private directions(): Float64Array {
+    const { plan } = this.comparer;
+    const { rows } = this.walk;
+    const length = this.profile.length;
+    const count = Math.min(SAMPLE, rows.length);
+    const sample = new Float64Array(count * length);
+    for (let k = 0; k < count; k++) {
+      this.load(rows[Math.floor((k * rows.length) / count)]!);
+      sample.set(this.profile, k * length);
+    }
+    return principalDirections(sample, count, plan.n, length, 1, INDEX_DIRECTIONS);
   }
 
   run(): Leaders {
     const { rows } = this.walk;
     let shown = -1;
     for (let step = 0; step < rows.length; step++) {
-      if (this.hooks.cancelled?.()) throw new SiftCancelled();
+      this.look();
       const percent = Math.floor((100 * step) / rows.length);
       if (percent !== shown) this.hooks.progress?.(step / rows.length);
       shown = percent;
@@ -115,21 +130,31 @@ class LeaderWalk {
     return this.result;
   }
 
+  private look(): void {
+    if (this.hooks.cancelled?.()) throw new SiftCancelled();
+  }
+
+  /** Writes shape and profile of a frame. */
+  private load(row: number): void {
+    const { plan } = this.comparer;
+    writeShape(plan, this.block.positions, row * 3 * this.block.atoms, this.shape, 0);
+    writeProfile(plan, this.shape, 0, this.profile, 0);
+  }
+
   private take(step: number): void {
-    const { block, comparer, store, profiles, rule } = this;
+    const { comparer, store, rule } = this;
     const { plan } = comparer;
     const row = this.walk.rows[step]!;
-    writeShape(plan, block.positions, row * 3 * block.atoms, this.shape, 0);
-    writeProfile(plan, this.shape, 0, this.profile, 0);
+    this.load(row);
     this.passLeaders(row);
     if (comparer.nodes > GENEROUS_NODES) comparer.nodeLimit = FRUGAL_NODE_LIMIT;
-    const limit = squareLimit(plan.n, rule.rmsdTolerance);
     const { leaders, followers } = this.result;
+    const near = this.index.near(this.profile, this.first);
     let exact = true;
-    for (let k = this.first; k < leaders.length; k++) {
-      this.countPair();
-      if (profilesExceed(plan.n, this.profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit)) continue;
-      const match = comparer.decide(
+    for (let i = 0; i < near.length; i++) {
+      const k = near[i]!;
+      this.look();
+      const match = comparer.decideNear(
         this.shape,
         0,
         store.arrayOf(k),
@@ -141,16 +166,13 @@ class LeaderWalk {
         const { rmsd, mirror } = match;
         followers.push({ row, step, leader: k, rmsd, mirror, exact: exact && match.exact });
         leaders[k]!.found += 1;
+        this.result.pairs += k + 1 - this.first;
         return;
       }
       if (comparer.lastWasCut) exact = false;
     }
+    this.result.pairs += leaders.length - this.first;
     this.lead(row, step, exact && plan.chain.complete);
-  }
-
-  private countPair(): void {
-    this.result.pairs += 1;
-    if (this.result.pairs % PAIRS_A_LOOK === 0 && this.hooks.cancelled?.()) throw new SiftCancelled();
   }
 
   /** Moves `first` past the leaders that lie too far below in energy; energies rise, so it never moves back. */
@@ -166,13 +188,12 @@ class LeaderWalk {
       this.first += 1;
     }
     this.store.release(this.first);
-    this.profiles.release(this.first);
   }
 
   private lead(row: number, step: number, exact: boolean): void {
     const { block, symmetry } = this;
+    this.index.add(this.profile);
     this.store.push(this.shape);
-    this.profiles.push(this.profile);
     const toMirror = this.comparer.toOwnMirror(this.shape, 0);
     if (symmetry.nodes > GENEROUS_SYMMETRY_NODES) symmetry.nodeLimit = FRUGAL_NODE_LIMIT;
     writeShape(symmetry.plan, block.positions, row * 3 * block.atoms, this.wholeShape, 0);

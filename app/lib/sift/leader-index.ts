@@ -1,0 +1,125 @@
+import { profilesExceed } from "../align/shape.ts";
+import { ShapeStore } from "./shape-store.ts";
+
+/** Directions that candidates are told apart by: the first sorts them, all together reject most of the rest. */
+export const INDEX_DIRECTIONS = 4;
+/** Numbers of an entry: its place along each direction, and which leader it is. */
+const ENTRY = INDEX_DIRECTIONS + 1;
+/** Widths of a bin in the tolerance: finer ones follow its edges better and are more. */
+const BINS_A_TOLERANCE = 4;
+
+/** Leaders of one bin, packed, in the order in which they came. */
+interface Bin {
+  entries: Float64Array;
+  count: number;
+  /** Entries before it have been left behind in energy. */
+  from: number;
+}
+
+/**
+ * Finds leaders that may lie within the RMSD tolerance of a shape. Profiles (see `writeProfile`) of such pairs differ
+ * by at most a limit, and so do their projections on orthonormal directions: leaders are kept in bins along the first
+ * direction, so that most are never looked at, however many there are.
+ */
+export class LeaderIndex {
+  private readonly bins = new Map<number, Bin>();
+  private readonly profiles: ShapeStore;
+  private readonly width: number;
+  private readonly reach: number;
+  private readonly square: number;
+  private readonly places = new Float64Array(INDEX_DIRECTIONS);
+  private found = new Int32Array(64);
+  private count = 0;
+  private leaders = 0;
+
+  /**
+   * @param n atoms of a profile
+   * @param directions rows of `n` numbers from `principalDirections`, at most INDEX_DIRECTIONS
+   * @param limit square of the largest difference of two profiles, from `squareLimit`
+   */
+  constructor(
+    private readonly n: number,
+    private readonly directions: Float64Array,
+    private readonly limit: number,
+  ) {
+    this.profiles = new ShapeStore(n + 1);
+    // Projections round, and directions are at right angles to within rounding only.
+    this.square = limit * (1 + 1e-9) + 1e-18;
+    this.reach = Math.sqrt(this.square);
+    this.width = this.reach / BINS_A_TOLERANCE;
+  }
+
+  /** Enters the next leader. */
+  add(profile: Float64Array): void {
+    this.project(profile);
+    this.profiles.push(profile);
+    const { places } = this;
+    const key = Math.floor(places[0]! / this.width);
+    let bin = this.bins.get(key);
+    if (!bin) {
+      bin = { entries: new Float64Array(8 * ENTRY), count: 0, from: 0 };
+      this.bins.set(key, bin);
+    }
+    const at = ENTRY * bin.count++;
+    if (at === bin.entries.length) {
+      const larger = new Float64Array(2 * at);
+      larger.set(bin.entries);
+      bin.entries = larger;
+    }
+    for (let d = 0; d < INDEX_DIRECTIONS; d++) bin.entries[at + d] = places[d]!;
+    bin.entries[at + INDEX_DIRECTIONS] = this.leaders++;
+  }
+
+  /**
+   * Leaders from number `first` on whose profiles are near, ascending; valid until the next call.
+   *
+   * @param first never falls from call to call
+   */
+  near(profile: Float64Array, first: number): Int32Array {
+    this.project(profile);
+    this.profiles.release(first);
+    this.count = 0;
+    const { width, reach, places } = this;
+    const last = Math.floor((places[0]! + reach) / width);
+    for (let key = Math.floor((places[0]! - reach) / width); key <= last; key++) {
+      const bin = this.bins.get(key);
+      if (bin) this.look(bin, profile, first);
+    }
+    return this.found.subarray(0, this.count).sort();
+  }
+
+  private project(profile: Float64Array): void {
+    const { n, directions, places } = this;
+    for (let d = 0; d * n < directions.length; d++) {
+      let sum = 0;
+      for (let k = 0; k < n; k++) sum += directions[d * n + k]! * profile[1 + k]!;
+      places[d] = sum;
+    }
+  }
+
+  private look(bin: Bin, profile: Float64Array, first: number): void {
+    const { entries } = bin;
+    const { n, limit, square, profiles, places } = this;
+    while (bin.from < bin.count && entries[ENTRY * bin.from + INDEX_DIRECTIONS]! < first) bin.from += 1;
+    if (this.count + bin.count > this.found.length) {
+      const larger = new Int32Array(2 * (this.count + bin.count));
+      larger.set(this.found);
+      this.found = larger;
+    }
+    const a = places[0]!;
+    const b = places[1]!;
+    const c = places[2]!;
+    const d = places[3]!;
+    const end = ENTRY * bin.count;
+    for (let at = ENTRY * bin.from; at < end; at += ENTRY) {
+      const p = entries[at]! - a;
+      const q = entries[at + 1]! - b;
+      const r = entries[at + 2]! - c;
+      const s = entries[at + 3]! - d;
+      if (p * p + q * q + r * r + s * s > square) continue;
+      const k = entries[at + INDEX_DIRECTIONS]!;
+      if (profilesExceed(n, profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit)) continue;
+      this.found[this.count++] = k;
+    }
+  }
+}
