@@ -114,6 +114,7 @@ export class SdfReader {
         this.#advance(builder);
         if (this.#mode === "bonds") readFastBonds(lines, builder);
         this.#advance(builder);
+        if (this.#mode === "v3000") this.#v3000?.takeFast(lines);
       }
       if (!lines.next()) return;
       if (isDelimiter(lines)) this.#takeDelimiter();

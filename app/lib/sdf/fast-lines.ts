@@ -15,6 +15,7 @@ const MINUS = 45;
 const POINT = 46;
 const ZERO = 48;
 const NINE = 57;
+const LETTER_A = 65;
 
 export interface FastTarget {
   /** Atoms and bonds to read in all, and those read so far. */
@@ -31,10 +32,13 @@ export interface FastTarget {
 /** Atomic number by the two bytes of a symbol that means one element and nothing more; filled as symbols are met. */
 const symbolTable = new Uint8Array(1 << 16);
 
-function elementOf(first: number, second: number): number {
+/** Atomic number of a symbol of one letter (then a blank) or two; 0 where it needs the slow path. */
+export function elementOf(first: number, second: number): number {
   const key = (first << 8) | second;
   const known = symbolTable[key]!;
   if (known !== 0) return known;
+  // Letters only: a line that ends behind the symbol goes the slow way.
+  if (first < LETTER_A || (second !== BLANK && second < LETTER_A)) return 0;
   const parsed = readSpecies(String.fromCharCode(first, second).trim());
   if (parsed.kind !== "element" || parsed.isotope !== 0 || parsed.form !== "symbol") return 0;
   symbolTable[key] = parsed.z;
@@ -150,7 +154,7 @@ function readThree(bytes: Uint8Array, at: number): number {
 }
 
 /** Where the next line begins if the line ends at `at`, else -1. */
-function behindEnd(bytes: Uint8Array, at: number, end: number): number {
+export function behindEnd(bytes: Uint8Array, at: number, end: number): number {
   const c = bytes[at]!;
   if (c === LF && at < end) return at + 1;
   if (c === CR && at + 1 < end) return at + (bytes[at + 1] === LF ? 2 : 1);

@@ -46,6 +46,8 @@ export function takeAtomLine(builder: RecordBuilder, line: TextLine): AtomFault 
 }
 
 function takeAtomColumns(builder: RecordBuilder, atom: number, text: string): AtomFault | null {
+  // Zeros say nothing, in whichever column they stand.
+  if (/^[ 0]*$/.test(text.slice(34))) return null;
   const mass = intColumns(text, 34, 36);
   const code = intColumns(text, 36, 39);
   const valence = intColumns(text, 48, 51);

@@ -1,9 +1,10 @@
 import { parseNumber, plainBlanksAndMinus } from "../intake/numbers.ts";
-import { MAX_LINE_BYTES } from "../text/lines.ts";
+import { type LineBuffer, MAX_LINE_BYTES } from "../text/lines.ts";
 import { type AtomFault, splitFields } from "../xyz/atom-line.ts";
 import type { BuilderFault, TextLine } from "../xyz/frame-builder.ts";
 import { bondTypeFault } from "./bond-types.ts";
 import { fieldName } from "./data-fields.ts";
+import { readFastAtoms3000, readFastBonds3000 } from "./fast-v3000.ts";
 import { isFault, misplaced, queryFeature, readCoordinate, readSymbol } from "./faults.ts";
 import { BLOCK_END, putValue } from "./property-lines.ts";
 import type { RecordBuilder } from "./record-builder.ts";
@@ -21,14 +22,23 @@ export class V3000Lines {
   readonly #blocks: string[] = [];
   /** What a line ending in `-` leaves for the next. */
   #continued: { readonly text: string; readonly line: number } | null = null;
-  /** Indices of the atoms as read, and places by index. */
-  readonly #indices: number[] = [];
+  /** Indices of the atoms as read, and places by index; null while they count up from 1. */
+  #indices: number[] | null = null;
   readonly #places = new Map<number, number>();
   #counted = false;
 
   constructor(builder: RecordBuilder, checkAtoms: (atoms: number, written: string) => void) {
     this.#builder = builder;
     this.#checkAtoms = checkAtoms;
+  }
+
+  /** Reads what it can straight from the bytes. */
+  takeFast(lines: LineBuffer): void {
+    if (this.#continued !== null || this.#indices !== null) return;
+    const builder = this.#builder;
+    const block = this.#blocks.at(-1);
+    if (block === "ATOM") readFastAtoms3000(lines, builder);
+    else if (block === "BOND" && builder.read >= builder.count) readFastBonds3000(lines, builder);
   }
 
   /**
@@ -124,11 +134,9 @@ export class V3000Lines {
     if (fields.length < 5 || !/^\d{1,9}$/.test(index)) {
       return misplaced("S05", `Here atom ${atom + 1} should stand: index, symbol, x, y, z.`, found);
     }
-    if (this.#places.has(Number(index))) {
+    if (!this.#putIndex(Number(index), atom)) {
       return misplaced("S05", `Two atoms have the index ${index}.`, found);
     }
-    this.#places.set(Number(index), atom);
-    this.#indices.push(Number(index));
     const unquoted = symbol.replace(/^"(.*)"$/, "$1");
     const named = readSymbol(unquoted, 1);
     if (isFault(named)) return { ...named, column: undefined };
@@ -141,6 +149,25 @@ export class V3000Lines {
     const fault = this.#takeKeys(atom, fields.slice(5), found);
     builder.read += 1;
     return fault;
+  }
+
+  /** False where another atom has the index. */
+  #putIndex(index: number, atom: number): boolean {
+    if (this.#indices === null) {
+      if (index === atom + 1) return true;
+      this.#indices = Array.from({ length: atom }, (_, k) => k + 1);
+      for (let k = 0; k < atom; k++) this.#places.set(k + 1, k);
+    }
+    if (this.#places.has(index)) return false;
+    this.#places.set(index, atom);
+    this.#indices.push(index);
+    return true;
+  }
+
+  /** Undefined where no atom has the index. */
+  #placeOf(index: number): number | undefined {
+    if (this.#indices !== null) return this.#places.get(index);
+    return index >= 1 && index <= this.#builder.read ? index - 1 : undefined;
   }
 
   #takeKeys(atom: number, pairs: readonly string[], found: string): AtomFault | null {
@@ -177,8 +204,8 @@ export class V3000Lines {
       const bond = builder.bondsRead + 1;
       return misplaced("S05", `Here bond ${bond} should stand: index, type and two atoms.`, line.text);
     }
-    const from = this.#places.get(a);
-    const to = this.#places.get(b);
+    const from = this.#placeOf(a);
+    const to = this.#placeOf(b);
     if (from === undefined || to === undefined || from === to) {
       const message = "A bond names an atom that the record does not have, or one atom twice.";
       return misplaced("S05", message, line.text);
@@ -209,7 +236,7 @@ export class V3000Lines {
   /** Atoms in the order of their indices, whatever the order of their lines. */
   #sortByIndex(): void {
     const indices = this.#indices;
-    if (indices.every((index, k) => k === 0 || index > indices[k - 1]!)) return;
+    if (indices === null || indices.every((index, k) => k === 0 || index > indices[k - 1]!)) return;
     const order = indices.map((_, k) => k).sort((j, k) => indices[j]! - indices[k]!);
     this.#builder.reorder(order);
   }
