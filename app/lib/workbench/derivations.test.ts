@@ -243,6 +243,10 @@ describe("findings in words", () => {
       text: `c1 alone carries 99${NBSP}% of the ensemble at 298.15${NBSP}K.`,
       second: `Next comes c2 with 0.63${NBSP}%.`,
     });
+    // Two of one energy: half each.
+    expect(at([0, 0]).text).toBe(
+      `Two shapes share the whole ensemble at 298.15${NBSP}K: c1 50${NBSP}% and c2 50${NBSP}%.`,
+    );
     // A hundred alike: 1 % each, fifty of them make half.
     expect(at(Array.from({ length: 100 }, () => 0)).text).toBe(
       `It takes 50 shapes to hold half of the ensemble at 298.15${NBSP}K: the most populated, c1, has 1${NBSP}%.`,

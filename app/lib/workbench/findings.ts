@@ -59,6 +59,13 @@ export function populationsFinding(rows: readonly ConformerRow[], temperatureK: 
   const carrying = ranked.filter((row) => (row.population ?? 0) >= CARRIES);
   const sum = (some: readonly ConformerRow[]) =>
     some.reduce((total, row) => total + (row.population ?? 0), 0);
+  if (carrying.length === ranked.length && ranked.length <= 4) {
+    const each = ranked.map((row) => `${row.name} ${shareWords(row.population ?? 0)}`);
+    return {
+      text: `${capital(countWord(ranked.length))} shapes share the whole ensemble ${at}: ${joinWords(each)}.`,
+      second: null,
+    };
+  }
   if (sum(carrying) < 0.5) {
     const half = countToShare(ranked, 0.5);
     return {
