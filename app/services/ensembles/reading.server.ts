@@ -5,11 +5,12 @@ import { newId } from "../../db/new-id.server.ts";
 import { ensembles, frameBlocks, frames } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { DomainError, type Fault } from "../../lib/errors.ts";
-import { formatCount } from "../../lib/format.ts";
+import { formatBytes, formatCount } from "../../lib/format.ts";
 import { type Classification, FrameClassifier } from "../../lib/intake/classify.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
 import { formatMessage } from "../../lib/intake/format-message.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
+import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
 import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
 import { BlockWriter } from "./block-writer.server.ts";
@@ -21,6 +22,11 @@ import { openFile } from "./open-file.server.ts";
 const BREATH_MS = 15;
 /** Bytes of a file parsed in one go. */
 const PIECE_BYTES = 65_536;
+/**
+ * Bytes and lines that may pass without a frame. The largest frame is a thousand atoms with a thousand columns; what goes
+ * on longer is no structure file, and a small packed one could keep the reader busy for minutes.
+ */
+const BARREN = { bytes: 16 * 2 ** 20, lines: 100_000 };
 /** How often a row in flight shows that its upload lives. */
 const SIGN_OF_LIFE_MS = 60_000;
 
@@ -47,6 +53,17 @@ export interface ReadResult {
   /** Most frames have an extended comment: its further keys are columns. */
   extended: boolean;
   atomLabels: (string | null)[] | null;
+}
+
+function noFrames(file: string, lastLine: number): IntakeRejection {
+  const most = `${formatBytes(BARREN.bytes)} or ${formatCount(BARREN.lines)} lines`;
+  return new IntakeRejection({
+    code: "G11",
+    file,
+    line: Math.max(1, lastLine),
+    message: `From here on the file holds no frame for more than ${most}.`,
+    hint: "Look whether the file was damaged, or is no XYZ.",
+  });
 }
 
 /**
@@ -135,9 +152,17 @@ export class Reading {
     });
     const position = this.files.length;
     const before = this.frames;
+    let barren = 0;
+    let lastLine = 0;
     for await (const chunk of checkFormat(name, file.bytes, remark)) {
       for (let at = 0; at < chunk.length; at += PIECE_BYTES) {
-        await this.takeAll(position, reader.push(chunk.subarray(at, at + PIECE_BYTES)));
+        const piece = chunk.subarray(at, at + PIECE_BYTES);
+        const found = reader.push(piece);
+        const { lines } = reader.summary();
+        barren = found.length > 0 ? 0 : barren + piece.length;
+        if (found.length > 0) lastLine = lines;
+        if (barren > BARREN.bytes || lines - lastLine > BARREN.lines) throw noFrames(name, lastLine);
+        await this.takeAll(position, found);
       }
     }
     await this.takeAll(position, reader.end());
