@@ -100,7 +100,7 @@ export class LineBuffer {
       file: this.#file,
       line: this.line + 1,
       message: `A line is longer than the limit of 1 MiB (${MAX_LINE_BYTES.toLocaleString("en-GB")} bytes).`,
-      hint: "XYZ needs one line per atom: is this the right file?",
+      hint: "XYZ and SDF have a short line per atom: is this the right file?",
     });
   }
 
