@@ -22,7 +22,7 @@ export interface Topology {
 }
 
 /** Bond orders are looked for in so many different molecules of a file; one that holds more is no ensemble. */
-const PERCEIVED = 50;
+const PERCEIVED = 8;
 
 /** Works out the topology of records; equal ones in a row cost a comparison and share their arrays. */
 export class Topologies {
