@@ -10,8 +10,8 @@ const [major, minor] = process.versions.node.split(".").map(Number);
 
 /** Settings from `.env`, where there is one; the environment itself wins. */
 export function loadSettings() {
-  if (major < 20 || (major === 20 && minor < 12)) {
-    throw new StartError(`Node.js 20.12 or later is needed; this is ${process.versions.node}.`);
+  if (major < 20 || (major === 20 && minor < 15)) {
+    throw new StartError(`Node.js 20.15 or later is needed; this is ${process.versions.node}.`);
   }
   process.chdir(ROOT);
   const file = path.join(ROOT, ".env");

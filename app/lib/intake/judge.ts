@@ -170,7 +170,7 @@ export class FrameJudge {
     return { code: "X40", reason: "other-configuration", message, hint: this.hintFor(different) };
   }
 
-  /** An NH+ or =NH turns over by way of its hydrogen: there a person may well release the frame. */
+  /** An NH+ or =NH turns over by way of its hydrogen: said beside the way out, which is the same for all. */
   private hintFor(different: readonly number[]): string {
     const { offsets, neighbours, elements } = this.graph;
     const withHydrogen = different
@@ -185,7 +185,7 @@ export class FrameJudge {
       );
     if (withHydrogen === undefined) return OWN_ENSEMBLE;
     const name = atomName(elements, withHydrogen);
-    return `${name} carries a hydrogen and inverts as soon as that comes off: release the frame if it does.`;
+    return `${name} carries a hydrogen and inverts when that comes off and on; the frames here do not show it. ${OWN_ENSEMBLE}`;
   }
 }
 
