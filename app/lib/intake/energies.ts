@@ -1,3 +1,4 @@
+import type { SdfFields } from "../sdf/frame.ts";
 import { quoteFound } from "../text/escape.ts";
 import type { EnergyUnit } from "../units.ts";
 import { type CommentNumber, type ScannedComment, scanComment } from "./comment-numbers.ts";
@@ -7,11 +8,13 @@ import {
   type EnergyFrom,
   type EnergyRow,
   EnergyValues,
+  type ExtractedEnergy,
   extractEnergy,
   parseFrom,
 } from "./energy-column.ts";
 import { boundUnit, classify, type NumberClass, namesEnergy, saysRelative } from "./energy-words.ts";
 import { hasProperties } from "./extended-comment.ts";
+import { extractFieldEnergy, scanFields } from "./field-energies.ts";
 
 /** Keys, and positions, beyond these are not followed: no comment line holds so many energies. */
 const MAX_TRACKS = 48;
@@ -67,8 +70,8 @@ export interface EnergyFindings {
 }
 
 /**
- * Looks through the comment lines of an upload, frame by frame, for the numbers that can be the energy (rows E01 to
- * E09).
+ * Looks through the comment lines and data fields of an upload, frame by frame, for the numbers that can be the energy
+ * (rows E01 to E09, S20).
  *
  * A number that is named as an energy counts more than one with only a unit of energy, and that more than one with
  * neither; what names another quantity, counts, or is a whole number is none. A single candidate of the best kind
@@ -84,6 +87,8 @@ export class EnergyScan {
   readonly #given = new EnergyValues();
   readonly #keys = new Map<string, Track>();
   readonly #positions = new Map<number, Track>();
+  /** By the name of their data field. */
+  readonly #fields = new Map<string, Track>();
   readonly #rows: EnergyRow[] = [];
   #unreadable: { key: string; found: string } | null = null;
 
@@ -96,23 +101,32 @@ export class EnergyScan {
     if (this.#from !== null) parseFrom(this.#from);
   }
 
-  /** One frame. Leave broken ones out: their comments say nothing about the others. */
-  add(frame: { number: number; file: string; line: number }, comment: string): void {
+  /**
+   * One frame. Leave broken ones out: their comments say nothing about the others.
+   *
+   * @param fields data fields of an SDF record
+   */
+  add(frame: { number: number; file: string; line: number }, comment: string, fields?: SdfFields): void {
     const row = this.#rows.length;
     this.#rows.push({ frame: frame.number, file: frame.file, line: frame.line });
-    if (this.#from !== null) this.#given.set(row, extractEnergy(comment, this.#from));
+    if (this.#from !== null) this.#given.set(row, extractGiven(comment, fields, this.#from));
     const scanned = scanComment(comment);
     const extended = scanned.keyed.size > 0 && hasProperties(comment);
+    this.#follow(this.#keys, row, scanned, extended);
+    for (const number of scanned.numbers) {
+      trackOf(this.#positions, number.position, true)?.put(row, number, scanned, extended);
+    }
+    if (fields) this.#follow(this.#fields, row, scanFields(fields), false);
+  }
+
+  #follow(tracks: Map<string, Track>, row: number, scanned: ScannedComment, extended: boolean): void {
     for (const [key, entry] of scanned.keyed) {
-      const track = trackOf(this.#keys, key, entry.number !== null);
+      const track = trackOf(tracks, key, entry.number !== null);
       if (entry.number) track?.put(row, entry.number, scanned, extended);
       else if (track) track.values.set(row, { problem: entry.text.slice(0, 200) });
       else if (this.#unreadable === null && namesEnergy(key)) {
         this.#unreadable = { key, found: quoteFound(entry.text) };
       }
-    }
-    for (const number of scanned.numbers) {
-      trackOf(this.#positions, number.position, true)?.put(row, number, scanned, extended);
     }
   }
 
@@ -132,13 +146,15 @@ export class EnergyScan {
     for (const [position, track] of this.#positions) {
       if (!owned.has(position)) found.push(make(`number:${position}`, null, track));
     }
+    for (const [name, track] of this.#fields) found.push(make(`field:${name}`, name, track));
     const candidates = found.filter((candidate) => candidate.count > 0).sort(byLikelihood);
     if (this.#from !== null) return this.#finishGiven(candidates, include);
     return { ...decide(candidates), unreadable: this.#withoutNumber() };
   }
 
   #withoutNumber(): EnergyFindings["unreadable"] {
-    return this.#unreadable && !this.#keys.has(this.#unreadable.key) ? this.#unreadable : null;
+    const key = this.#unreadable?.key ?? "";
+    return this.#keys.has(key) || this.#fields.has(key) ? null : this.#unreadable;
   }
 
   /** A name that changes from frame to frame, such as the label in `conf_0007: -12.3`. */
@@ -156,17 +172,24 @@ export class EnergyScan {
     const column = this.#given.finish(from, this.#rows);
     if (column.count === 0) throw absentEnergy(from);
     const known = this.#trackOfGiven(from);
-    const key = from.startsWith("key:") ? from.slice(4) : null;
+    const rule = parseFrom(from);
+    const key = rule.kind === "number" ? null : rule.name;
     const chosen = makeCandidate(from, key, known ?? new Track(0), column, include);
     const others = candidates.filter((candidate) => candidate.from !== from);
     return { candidates: [chosen, ...others], verdict: "given", chosen, proposed: chosen, unreadable: null };
   }
 
   #trackOfGiven(from: EnergyFrom): Track | undefined {
-    return from.startsWith("key:")
-      ? this.#keys.get(from.slice(4))
-      : this.#positions.get(Number(from.slice("number:".length)));
+    const rule = parseFrom(from);
+    if (rule.kind === "number") return this.#positions.get(rule.position);
+    return (rule.kind === "key" ? this.#keys : this.#fields).get(rule.name);
   }
+}
+
+function extractGiven(comment: string, fields: SdfFields | undefined, from: EnergyFrom): ExtractedEnergy {
+  const rule = parseFrom(from);
+  if (rule.kind !== "field") return extractEnergy(comment, from);
+  return fields ? extractFieldEnergy(fields, rule.name) : null;
 }
 
 /** What is gathered of one key or position while the frames pass. */
