@@ -2,7 +2,8 @@ import { useCallback, useMemo } from "react";
 import { useLocation, useNavigate } from "react-router";
 import { readState, searchOf, type WorkbenchState, writeState } from "~/lib/url-state";
 
-export type ChangeState = (change: Partial<WorkbenchState>, how?: { replace?: boolean }) => void;
+/** Settles once the address has changed. */
+export type ChangeState = (change: Partial<WorkbenchState>, how?: { replace?: boolean }) => Promise<void>;
 
 /**
  * What is selected, read from the address and written to it. A change is a step of the browser's history unless
@@ -13,11 +14,11 @@ export function useAddressState(): [WorkbenchState, ChangeState] {
   const navigate = useNavigate();
   const state = useMemo(() => readState(new URLSearchParams(search)), [search]);
   const change = useCallback<ChangeState>(
-    (part, how) => {
+    async (part, how) => {
       const now = new URLSearchParams(search);
       const next = searchOf(writeState({ ...readState(now), ...part }, now));
       if (next === searchOf(now)) return;
-      navigate(
+      await navigate(
         { pathname, search: next },
         {
           replace: how?.replace ?? false,

@@ -1,4 +1,4 @@
-import { useEffect, useRef, useState } from "react";
+import { useRef, useState } from "react";
 import useSWR from "swr";
 import type { SiftRequest } from "~/lib/recipe/recipe";
 import type { SiftStatus } from "~/lib/views";
@@ -10,7 +10,7 @@ interface SiftState {
   error?: string | null;
 }
 
-function ended(status: SiftStatus): boolean {
+export function hasEnded(status: SiftStatus): boolean {
   return status === "done" || status === "failed" || status === "cancelled";
 }
 
@@ -38,30 +38,22 @@ async function problemWords(response: Response): Promise<string> {
 }
 
 /**
- * Follows a sift that waits or runs, and tells when it has ended.
+ * Follows a sift that waits or runs.
  *
  * @param id null where there is nothing to follow
  */
-export function useRunningSift(id: string | null, onEnd: (state: SiftState) => void): SiftState | null {
-  const told = useRef<string | null>(null);
-  const latest = useRef(onEnd);
-  latest.current = onEnd;
+export function useRunningSift(id: string | null): SiftState | null {
   const { data } = useSWR<SiftState, Error>(
     id === null ? null : `/files/sifts/${id}?wait=1`,
     (address: string) => askState(address),
     {
-      refreshInterval: (state) => (state && ended(state.status) ? 0 : 150),
+      refreshInterval: (state) => (state && hasEnded(state.status) ? 0 : 150),
       dedupingInterval: 0,
       revalidateOnFocus: false,
       shouldRetryOnError: true,
       errorRetryInterval: 2000,
     },
   );
-  useEffect(() => {
-    if (!data || data.id !== id || !ended(data.status) || told.current === data.id) return;
-    told.current = data.id;
-    latest.current(data);
-  }, [data, id]);
   return data?.id === id ? data : null;
 }
 
@@ -106,7 +98,7 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
       if (mine !== turn.current) return;
       running.current = state.id;
       setAsked({ id: state.id, progress: state.progress, request });
-      while (!ended(state.status)) {
+      while (!hasEnded(state.status)) {
         state = await askState(`/files/sifts/${state.id}?wait=1`);
         if (mine !== turn.current) return;
         setAsked({ id: state.id, progress: state.progress, request });
@@ -151,7 +143,7 @@ export async function countKept(
   });
   if (!response.ok) throw new Error(await problemWords(response));
   let state = (await response.json()) as SiftState & { result?: { kept: unknown[] } | null };
-  while (!ended(state.status) || !state.result) {
+  while (!hasEnded(state.status) || !state.result) {
     if (state.status === "failed" || state.status === "cancelled")
       throw new Error(state.error ?? `This sift was ${state.status}.`);
     const next = await fetch(`/files/sifts/${state.id}?wait=20`, {

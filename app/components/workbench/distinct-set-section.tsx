@@ -24,12 +24,18 @@ export function DistinctSetSection() {
   // One step of history for one gesture: while a thumb is held the later results replace the first.
   const gesture = useRef<"open" | "fresh">("fresh");
   const [before, setBefore] = useState<{ id: string; kept: number; tolerance: number } | null>(null);
-  const { ask, cancel, asked, error, clearError } = useNewSift(ensemble.id, (id) => {
+  const latest = useRef(change);
+  latest.current = change;
+  const named = useRef<Promise<void> | null>(null);
+  const { ask, cancel, asked, error, clearError } = useNewSift(ensemble.id, async (id) => {
     if (sift === null || id === sift.id) return;
     if (result && gesture.current === "fresh")
       setBefore({ id: sift.id, kept: result.kept.length, tolerance: sift.recipe.rmsdTolerance });
-    change({ sift: id }, { replace: gesture.current === "open" });
+    const replace = gesture.current === "open";
     gesture.current = "open";
+    // The step before must be in the history, or this one would overtake it.
+    await named.current;
+    await latest.current({ sift: id }, { replace });
   });
   // biome-ignore lint/correctness/useExhaustiveDependencies: a sift never changes its recipe; read again it is the same one
   const request = useMemo<SiftRequest>(
@@ -39,7 +45,9 @@ export function DistinctSetSection() {
   const onAsk = (next: SiftRequest, settled: boolean) => {
     clearError();
     // An address without a sift means the newest one, which the answer will be: name what is shown, so that "back" finds it.
-    if (sift !== null && result !== null && state.sift === null) change({ sift: sift.id }, { replace: true });
+    if (sift !== null && result !== null && state.sift === null) {
+      named.current = change({ sift: sift.id }, { replace: true });
+    }
     void ask(next).finally(() => {
       if (settled) gesture.current = "fresh";
     });

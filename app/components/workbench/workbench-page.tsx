@@ -1,10 +1,10 @@
 import { ArrowRight, Link2 } from "lucide-react";
-import { type ReactNode, useMemo } from "react";
-import { href, useLocation, useRevalidator } from "react-router";
+import { type ReactNode, useEffect, useMemo } from "react";
+import { href, useLocation, useNavigation, useRevalidator } from "react-router";
 import { AppShell, pageClass } from "~/components/layout/app-shell";
 import { Button, ButtonLink } from "~/components/ui/button";
 import { showToast } from "~/components/ui/toast";
-import { useRunningSift } from "~/hooks/use-sift";
+import { hasEnded, useRunningSift } from "~/hooks/use-sift";
 import { searchOf, writeState } from "~/lib/url-state";
 import type { EnsembleView, IntakeView, SiftView } from "~/lib/views";
 import { recipeLine } from "~/lib/workbench/recipe-words";
@@ -44,12 +44,22 @@ export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchDat
 
 /** The sift of the loader; while it runs its progress is followed, and its end fetches the result. */
 function useFollowedSift(sift: SiftView | null): SiftView | null {
-  const { revalidate } = useRevalidator();
+  const { revalidate, state: fetching } = useRevalidator();
+  const navigation = useNavigation();
   const runs = sift !== null && (sift.status === "queued" || sift.status === "running");
-  const state = useRunningSift(runs ? sift.id : null, () => void revalidate());
+  const state = useRunningSift(runs ? sift.id : null);
+  const over = runs && state !== null && hasEnded(state.status);
+  const idle = fetching === "idle" && navigation.state === "idle";
+  // Asked for in the middle of a navigation it would be lost in it: it waits for that to be over.
+  useEffect(() => {
+    if (over && idle) void revalidate();
+  }, [over, idle, revalidate]);
   return useMemo(
-    () => (sift && runs && state ? { ...sift, status: state.status, progress: state.progress } : sift),
-    [sift, runs, state],
+    () =>
+      sift && runs && state
+        ? { ...sift, status: over ? "running" : state.status, progress: over ? 1 : state.progress }
+        : sift,
+    [sift, runs, state, over],
   );
 }
 
