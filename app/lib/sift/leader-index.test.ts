@@ -3,6 +3,7 @@ import { describe, expect, it } from "vitest";
 import { profilesExceed, squareLimit } from "../align/shape.ts";
 import { INDEX_DIRECTIONS, LeaderIndex } from "./leader-index.ts";
 import { principalDirections } from "./principal.ts";
+import { ShapeStore } from "./shape-store.ts";
 
 /** Profiles of `n` distances behind their norm. */
 const profiles = (n: number) =>
@@ -20,10 +21,17 @@ const cases = fc
     fc.record({ n: fc.constant(n), rows: profiles(n), tolerance: fc.integer({ min: 0, max: 200 }) }),
   );
 
-function indexOf(n: number, rows: Float64Array[], tolerance: number): LeaderIndex {
+function indexOf(n: number, rows: Float64Array[], tolerance: number) {
+  const store = new ShapeStore(n + 1);
   const sample = Float64Array.from(rows.flatMap((row) => [...row]));
   const directions = principalDirections(sample, rows.length, n, n + 1, 1, INDEX_DIRECTIONS);
-  return new LeaderIndex(n, directions, squareLimit(n, tolerance));
+  const index = new LeaderIndex(n, directions, store, squareLimit(n, tolerance));
+  let leaders = 0;
+  const add = (row: Float64Array) => {
+    index.add(leaders++, row);
+    store.push(row);
+  };
+  return { add, near: (row: Float64Array, first: number) => index.near(row, first) };
 }
 
 describe("index of leaders", () => {

@@ -1,5 +1,8 @@
-import { profilesExceed } from "../align/shape.ts";
-import { ShapeStore } from "./shape-store.ts";
+import type { SymmetryPlan } from "../align/plan.ts";
+import { profileLength, profilesExceed, writeProfile, writeShape } from "../align/shape.ts";
+import type { FrameBlock } from "../structure.ts";
+import { principalDirections } from "./principal.ts";
+import type { ShapeStore } from "./shape-store.ts";
 
 /** Directions that candidates are told apart by: the first sorts them, all together reject most of the rest. */
 export const INDEX_DIRECTIONS = 4;
@@ -7,6 +10,23 @@ export const INDEX_DIRECTIONS = 4;
 const ENTRY = INDEX_DIRECTIONS + 1;
 /** Widths of a bin in the tolerance: finer ones follow its edges better and are more. */
 const BINS_A_TOLERANCE = 4;
+
+/** Frames whose profiles show along which directions the ensemble spreads. */
+const SAMPLE = 128;
+
+/** Directions along which the profiles of some frames, spread over the given rows, differ most. */
+export function profileDirections(plan: SymmetryPlan, block: FrameBlock, rows: Int32Array): Float64Array {
+  const length = profileLength(plan);
+  const count = Math.min(SAMPLE, rows.length);
+  const sample = new Float64Array(count * length);
+  const shape = new Float64Array(plan.shapeLength);
+  for (let k = 0; k < count; k++) {
+    const row = rows[Math.floor((k * rows.length) / count)]!;
+    writeShape(plan, block.positions, row * 3 * block.atoms, shape, 0);
+    writeProfile(plan, shape, 0, sample, k * length);
+  }
+  return principalDirections(sample, count, plan.n, length, 1, INDEX_DIRECTIONS);
+}
 
 /** Leaders of one bin, packed, in the order in which they came. */
 interface Bin {
@@ -23,36 +43,34 @@ interface Bin {
  */
 export class LeaderIndex {
   private readonly bins = new Map<number, Bin>();
-  private readonly profiles: ShapeStore;
   private readonly width: number;
   private readonly reach: number;
   private readonly square: number;
   private readonly places = new Float64Array(INDEX_DIRECTIONS);
   private found = new Int32Array(64);
   private count = 0;
-  private leaders = 0;
 
   /**
    * @param n atoms of a profile
    * @param directions rows of `n` numbers from `principalDirections`, at most INDEX_DIRECTIONS
+   * @param profiles of the leaders, by their numbers
    * @param limit square of the largest difference of two profiles, from `squareLimit`
    */
   constructor(
     private readonly n: number,
     private readonly directions: Float64Array,
+    private readonly profiles: ShapeStore,
     private readonly limit: number,
   ) {
-    this.profiles = new ShapeStore(n + 1);
     // Projections round, and directions are at right angles to within rounding only.
     this.square = limit * (1 + 1e-9) + 1e-18;
     this.reach = Math.sqrt(this.square);
     this.width = this.reach / BINS_A_TOLERANCE;
   }
 
-  /** Enters the next leader. */
-  add(profile: Float64Array): void {
+  /** Enters a leader, whose number is above all before. */
+  add(leader: number, profile: Float64Array): void {
     this.project(profile);
-    this.profiles.push(profile);
     const { places } = this;
     const key = Math.floor(places[0]! / this.width);
     let bin = this.bins.get(key);
@@ -67,7 +85,7 @@ export class LeaderIndex {
       bin.entries = larger;
     }
     for (let d = 0; d < INDEX_DIRECTIONS; d++) bin.entries[at + d] = places[d]!;
-    bin.entries[at + INDEX_DIRECTIONS] = this.leaders++;
+    bin.entries[at + INDEX_DIRECTIONS] = leader;
   }
 
   /**
@@ -77,7 +95,6 @@ export class LeaderIndex {
    */
   near(profile: Float64Array, first: number): Int32Array {
     this.project(profile);
-    this.profiles.release(first);
     this.count = 0;
     const { width, reach, places } = this;
     const last = Math.floor((places[0]! + reach) / width);

@@ -4,17 +4,10 @@ import { SymmetricRmsd } from "../align/symmetric-rmsd.ts";
 import { SymmetryNumber } from "../align/symmetry-number.ts";
 import type { FrameBlock } from "../structure.ts";
 import { SiftCancelled, type SiftHooks } from "./hooks.ts";
-import { INDEX_DIRECTIONS, LeaderIndex } from "./leader-index.ts";
-import { principalDirections } from "./principal.ts";
+import { LeaderIndex, profileDirections } from "./leader-index.ts";
 import { ShapeStore } from "./shape-store.ts";
 import type { SiftEnergies, Walk } from "./walk.ts";
-
-/** Frames whose profiles show along which directions the ensemble spreads. */
-const SAMPLE = 128;
-/** Search nodes of a whole sift after which single comparisons get fewer, so that no molecule makes it endless. */
-const GENEROUS_NODES = 100e6;
-const GENEROUS_SYMMETRY_NODES = 5e6;
-const FRUGAL_NODE_LIMIT = 5_000;
+import { FRUGAL_NODE_LIMIT, GENEROUS_NODES, GENEROUS_SYMMETRY_NODES } from "./work-limits.ts";
 
 export interface LeaderRule {
   /** kcal/mol; null: any. */
@@ -77,6 +70,7 @@ class LeaderWalk {
   private readonly symmetry: SymmetryNumber;
   private readonly index: LeaderIndex;
   private readonly store: ShapeStore;
+  private readonly profiles: ShapeStore;
   private readonly shape: Float64Array;
   private readonly profile: Float64Array;
   private readonly wholeShape: Float64Array;
@@ -99,21 +93,9 @@ class LeaderWalk {
     this.shape = new Float64Array(plan.shapeLength);
     this.profile = new Float64Array(profileLength(plan));
     this.wholeShape = new Float64Array(whole.shapeLength);
-    this.index = new LeaderIndex(plan.n, this.directions(), squareLimit(plan.n, rule.rmsdTolerance));
-  }
-
-  /** Along which the profiles of some frames, spread over the walk, differ most. */
-  private directions(): Float64Array {
-    const { plan } = this.comparer;
-    const { rows } = this.walk;
-    const length = this.profile.length;
-    const count = Math.min(SAMPLE, rows.length);
-    const sample = new Float64Array(count * length);
-    for (let k = 0; k < count; k++) {
-      this.load(rows[Math.floor((k * rows.length) / count)]!);
-      sample.set(this.profile, k * length);
-    }
-    return principalDirections(sample, count, plan.n, length, 1, INDEX_DIRECTIONS);
+    this.profiles = new ShapeStore(profileLength(plan));
+    const limit = squareLimit(plan.n, rule.rmsdTolerance);
+    this.index = new LeaderIndex(plan.n, profileDirections(plan, block, walk.rows), this.profiles, limit);
   }
 
   run(): Leaders {
@@ -188,11 +170,13 @@ class LeaderWalk {
       this.first += 1;
     }
     this.store.release(this.first);
+    this.profiles.release(this.first);
   }
 
   private lead(row: number, step: number, exact: boolean): void {
     const { block, symmetry } = this;
-    this.index.add(this.profile);
+    this.index.add(this.result.leaders.length, this.profile);
+    this.profiles.push(this.profile);
     this.store.push(this.shape);
     const toMirror = this.comparer.toOwnMirror(this.shape, 0);
     if (symmetry.nodes > GENEROUS_SYMMETRY_NODES) symmetry.nodeLimit = FRUGAL_NODE_LIMIT;
