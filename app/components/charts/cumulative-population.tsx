@@ -1,4 +1,4 @@
-import { formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
+import { formatCount, formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
 import { type Cumulative, withinWindow } from "~/lib/workbench/cumulative";
 import { shareWords } from "~/lib/workbench/findings";
 import { ChartFrame } from "./chart-frame";
@@ -46,6 +46,7 @@ export function CumulativePopulation({
       >
         <CumulativeLayer cumulative={cumulative} shown={shown} windowKcal={windowKcal} top={top} />
       </Plot>
+      <Readings cumulative={cumulative} />
     </ChartFrame>
   );
 }
@@ -70,7 +71,6 @@ function CumulativeLayer({
     line += `H${plot.x(step.energy).toFixed(1)}V${plot.y(100 * step.share).toFixed(1)}`;
   line += `H${plot.right}`;
   const readings = cumulative.readings.filter((reading) => reading.energy <= top);
-  const narrow = plot.right - plot.left < 340;
   return (
     <g>
       <path d={`${line}V${zero}Z`} fill="var(--color-depth-1)" fillOpacity={0.5} />
@@ -97,54 +97,35 @@ function CumulativeLayer({
           stroke="var(--color-ink)"
         />
       ))}
-      <Readings plot={plot} cumulative={cumulative} windowKcal={windowKcal} narrow={narrow} />
     </g>
   );
 }
 
-/** The four shares as a small table in the corner that the curve leaves free: it climbs at the left. */
-function Readings({
-  plot,
-  cumulative,
-  windowKcal,
-  narrow,
-}: {
-  plot: NonNullable<ReturnType<typeof usePlot>>;
-  cumulative: Cumulative;
-  windowKcal: number | null;
-  narrow: boolean;
-}) {
-  // Left of the window's line where there is room for it.
-  const edge =
-    windowKcal !== null && plot.x(windowKcal) < plot.right ? plot.x(windowKcal) - 14 : plot.right - 14;
-  const right = edge - plot.left > 250 ? edge : plot.right - (narrow ? 2 : 14);
-  const columns = [right - 130, right - 74, right] as const;
-  const top = plot.top + (plot.bottom - plot.top) * (narrow ? 0.46 : 0.34);
-  const heads = ["share", "window", "conformers"];
+/** The four shares as a small table below the figure: inside, curve and window cross it for one ensemble or another. */
+function Readings({ cumulative }: { cumulative: Cumulative }) {
   return (
-    <g>
-      {heads.map((head, k) => (
-        <ChartText key={head} x={columns[k] ?? right} y={top} end>
-          {head}
-        </ChartText>
-      ))}
-      <path d={`M${columns[0] - 34} ${top + 7}H${right}`} stroke="var(--color-rule-2)" />
-      {cumulative.readings.map((reading, row) => {
-        const y = top + 24 + 20 * row;
-        return (
-          <g key={reading.asked}>
-            <ChartText x={columns[0]} y={y} end tone="ink">
+    <table className="mt-2 text-xs">
+      <caption className="sr-only">Window and conformers that hold a share of the population</caption>
+      <thead className="text-ink-3">
+        <tr>
+          {["share", "window, kcal/mol", "conformers"].map((head) => (
+            <th key={head} scope="col" className="py-1 pr-6 text-right font-normal">
+              {head}
+            </th>
+          ))}
+        </tr>
+      </thead>
+      <tbody>
+        {cumulative.readings.map((reading) => (
+          <tr key={reading.asked} className="border-rule border-t">
+            <th scope="row" className="py-1 pr-6 text-right font-medium">
               {formatPercent(reading.asked)}
-            </ChartText>
-            <ChartText x={columns[1]} y={y} end tone="ink">
-              {formatEnergy(reading.energy)}
-            </ChartText>
-            <ChartText x={columns[2]} y={y} end tone="ink">
-              {reading.count}
-            </ChartText>
-          </g>
-        );
-      })}
-    </g>
+            </th>
+            <td className="py-1 pr-6 text-right">{formatEnergy(reading.energy)}</td>
+            <td className="py-1 pr-6 text-right">{formatCount(reading.count)}</td>
+          </tr>
+        ))}
+      </tbody>
+    </table>
   );
 }

@@ -89,7 +89,11 @@ function undefinedNote(share: number): string | null {
 function BarsLayer({ histogram, rows }: { histogram: MeasureHistogram; rows: readonly ConformerRow[] }) {
   const plot = usePlot();
   if (!plot) return null;
-  const tallest = [...histogram.bins].sort((a, b) => b.share - a.share).slice(0, NAMED);
+  // The tallest bars are named, but none beside a bar that is.
+  const tallest: typeof histogram.bins = [];
+  for (const bin of [...histogram.bins].sort((a, b) => b.share - a.share).slice(0, NAMED)) {
+    if (tallest.every((other) => Math.abs(plot.x(other.from) - plot.x(bin.from)) > 28)) tallest.push(bin);
+  }
   return (
     <g>
       {histogram.bins.map((bin) => {
