@@ -184,9 +184,9 @@ function LevelMarkers({ levels }: { levels: EnsembleRow["levels"] }) {
   return (
     <ul className="flex gap-2">
       {levels.map((level) => (
-        <li key={level.ordinal} title={level.name}>
+        <li key={level.ordinal} title={level.name} className="flex items-center gap-2">
           <LevelMarker ordinal={level.ordinal} />
-          <span className="sr-only">{level.name}</span>
+          <span className={levels.length > 1 ? "sr-only" : "max-w-24 truncate text-xs"}>{level.name}</span>
         </li>
       ))}
     </ul>

@@ -100,7 +100,7 @@ export function ThermoFigures({ populations }: { populations: DistinctPopulation
       <KeyFigure
         label="Effective number"
         value={fixed(effectiveCount, 1)}
-        unit={`of ${formatCount(rows.length)}`}
+        unit="microstates"
         source={source(
           "Effective number",
           fixed(effectiveCount, 1),

@@ -13,7 +13,7 @@ export type NumberClass = "energy" | "unit" | "loose" | "whole" | "other";
 const set = (words: string) => new Set(words.split(" "));
 
 const ENERGY_WORDS = set(
-  "energy energies enthalpy gibbs helmholtz e g h etot etotal toten epot escf eelec erel ezpe scf",
+  "energy energies enthalpy gibbs helmholtz e g h etot etotal toten epot escf eelec erel ezpe scf hf uhf rhf dft mp2 mp3 mp4 ccsd ccsdt",
 );
 /** Quantities that are no energies of a conformer even where an energy stands in their name. */
 const MEASURES = set(

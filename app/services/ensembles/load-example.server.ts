@@ -18,9 +18,9 @@ export async function loadExample(options: {
     .limit(1);
   const ensembleId = rows[0]?.id;
   if (ensembleId === undefined) return null;
-  const { actor } = options;
   return {
-    ensemble: await loadEnsemble({ actor, ensembleId }),
-    sift: await loadSift({ actor, ensembleId }),
+    ensemble: await loadEnsemble({ actor: options.actor, ensembleId }),
+    // As a guest, whoever looks: the public page shows one result to all.
+    sift: await loadSift({ actor: { kind: "anonymous" }, ensembleId }),
   };
 }

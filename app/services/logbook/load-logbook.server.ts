@@ -1,9 +1,9 @@
-import { and, desc, eq, lt, type SQL } from "drizzle-orm";
+import { and, desc, eq, isNull, lt, type SQL } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { apiTokens, logbook, users } from "../../db/schema.server.ts";
 import { describeEntry, logbookEntrySchema } from "../../lib/logbook/entries.ts";
 import type { LogbookRow } from "../../lib/views.ts";
-import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
+import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 
 const PAGE = 200;
 
@@ -38,19 +38,16 @@ async function find(where: SQL | undefined, before: number | undefined): Promise
     .limit(PAGE);
 }
 
-function toRow(found: Found, grant: Grant): LogbookRow {
+function toRow(found: Found): LogbookRow {
   const read = logbookEntrySchema.safeParse({ type: found.type, data: found.data });
   const words = read.success ? describeEntry(read.data) : { text: found.type, detail: null };
   const by = found.tokenId !== null ? "token" : found.userId !== null ? "person" : "product";
-  // A guest of the example reads what was decided, not who decided it.
   const who =
     by === "product"
       ? "Lowlying"
-      : grant.role === "guest"
-        ? "A member of the team"
-        : by === "token"
-          ? `Token ${found.tokenPrefix ?? ""}…`
-          : (found.userName ?? "A former member");
+      : by === "token"
+        ? `Token ${found.tokenPrefix ?? ""}…`
+        : (found.userName ?? "A former member");
   return { id: found.id, at: found.createdAt.toISOString(), who, by, type: found.type, ...words };
 }
 
@@ -65,6 +62,8 @@ export async function loadLogbook(options: {
   before?: number;
 }): Promise<LogbookRow[]> {
   const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
-  const where = and(eq(logbook.teamId, grant.teamId), eq(logbook.ensembleId, grant.ensembleId));
-  return (await find(where, options.before)).map((row) => toRow(row, grant));
+  // What members try on the example is theirs; a guest reads how it came about.
+  const own = grant.role === "guest" ? and(isNull(logbook.userId), isNull(logbook.tokenId)) : undefined;
+  const where = and(eq(logbook.teamId, grant.teamId), eq(logbook.ensembleId, grant.ensembleId), own);
+  return (await find(where, options.before)).map(toRow);
 }

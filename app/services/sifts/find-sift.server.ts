@@ -96,6 +96,12 @@ export function chooseSift(newestFirst: readonly FoundSift[]): FoundSift | null 
   );
 }
 
+/** The sift that guests are shown: the one that intake started, whatever members try later. */
+export function chooseFirstSift(newestFirst: readonly FoundSift[]): FoundSift | null {
+  const done = newestFirst.filter((sift) => sift.current && sift.status === "done");
+  return done.at(-1) ?? chooseSift(newestFirst);
+}
+
 /** The stored result of a sift; null until it is done. */
 export async function readResult(siftId: string): Promise<SiftResult | null> {
   const rows = await db.select({ result: sifts.result }).from(sifts).where(eq(sifts.id, siftId)).limit(1);
