@@ -1,2 +1,2 @@
-/** Builds `.worker/compute.worker.mjs`. */
+/** Builds `.worker/compute.worker.mjs` and `.worker/kernel.wasm`. */
 export function buildWorker(): Promise<void>;

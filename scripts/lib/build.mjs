@@ -4,12 +4,13 @@ import path from "node:path";
 import { withLock } from "./lock.mjs";
 import { ROOT, run } from "./processes.mjs";
 
-const SOURCES = ["app", "public"];
+const SOURCES = ["app", "assembly", "public"];
 const SETTINGS = [
   "package-lock.json",
   "react-router.config.ts",
   "vite.config.ts",
   "tsconfig.json",
+  "scripts/build-kernel.mjs",
   "scripts/build-worker.mjs",
   "scripts/lib/build.mjs",
 ];
