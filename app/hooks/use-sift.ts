@@ -2,6 +2,7 @@ import { useRef, useState } from "react";
 import useSWR from "swr";
 import type { SiftRequest } from "~/lib/recipe/recipe";
 import type { SiftStatus } from "~/lib/views";
+import { failureWords } from "./failure-words";
 
 interface SiftState {
   id: string;
@@ -111,7 +112,7 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
       if (mine !== turn.current) return;
       running.current = null;
       setAsked(null);
-      setError(caught instanceof Error ? caught.message : "The server does not answer. Try again.");
+      setError(failureWords(caught));
     }
   };
 

@@ -3,6 +3,7 @@ import { Button } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
+import { failureWords } from "~/hooks/failure-words";
 import { countKept } from "~/hooks/use-sift";
 import { capital, countWord, fixed, formatCount, formatEnergy, formatRmsd, withUnit } from "~/lib/format";
 import type { SiftRecipe } from "~/lib/recipe/recipe";
@@ -113,8 +114,7 @@ export function AroundTolerance({ recipe }: { recipe: SiftRecipe }) {
       const [half, double] = await Promise.all([ask(at / 2), ask(2 * at)]);
       setCounts({ half: { tolerance: at / 2, ...half }, double: { tolerance: 2 * at, ...double } });
     } catch (caught) {
-      if (!control.signal.aborted)
-        setError(caught instanceof Error ? caught.message : "This did not work. Try again.");
+      if (!control.signal.aborted) setError(failureWords(caught));
     }
     if (!control.signal.aborted) setBusy(false);
   };

@@ -95,7 +95,7 @@ export function SiftSettings({
         />
         {energies ? (
           <Checkbox
-            className="mt-2 text-xs text-ink-2"
+            className="mt-3 text-xs text-ink-2"
             checked={tolerance === null}
             disabled={locked}
             onChange={(event) =>

@@ -4,6 +4,7 @@ import { Note } from "~/components/ui/note";
 import { TextButton } from "~/components/ui/text-link";
 import { PicksList } from "~/components/viewer/picks-list";
 import { Viewer, type ViewerProps } from "~/components/viewer/viewer";
+import { failureWords } from "~/hooks/failure-words";
 import { useCoordinates } from "~/hooks/use-coordinates";
 import { useHovered } from "~/hooks/use-hovered";
 import { useSettled } from "~/hooks/use-settled";
@@ -101,7 +102,7 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
       </Viewer>
       {error ? (
         <Note tone="danger" className="mt-3">
-          {error.message}{" "}
+          {failureWords(error)}{" "}
           <TextButton onClick={() => (own.error ? own : coordinates).retry()}>Try again</TextButton>
         </Note>
       ) : coordinates.missing > 0 && rows.length > 0 ? (
