@@ -79,6 +79,15 @@ describe("the pages of an ensemble", () => {
     const rows = await loadLogbook({ actor, ensembleId });
     expect(rows[0]).toMatchObject({ type: "hold", by: "token", text: "Held frame 1" });
     expect(rows[0]?.who).toMatch(/^Token lowl_/);
+    const told = await (await call(`/api/v1/ensembles/${ensembleId}`, { token: lab.token })).json();
+    expect(told.intake.messages.at(-1)).toEqual({
+      code: "by-hand",
+      severity: "hold",
+      file: "four.xyz",
+      line: 1,
+      frame: 1,
+      message: "<script>alert(1)</script>",
+    });
     await db.update(ensembles).set({ example: true }).where(eq(ensembles.id, ensembleId));
     expect(await loadLogbook({ actor: NOBODY, ensembleId })).toEqual([]);
     const view = await loadEnsemble({ actor: NOBODY, ensembleId });

@@ -41,7 +41,8 @@ function shownAs(shape: Record<string, unknown>, description: string) {
 // --- what goes wrong ---------------------------------------------------------------------------
 
 export const problemSchema = z
-  .object({
+  // RFC 9457 lets a problem carry further members, such as the row of the acceptance tables or the sift concerned.
+  .looseObject({
     type: z.string(),
     title: z.string(),
     status: z.number().int(),

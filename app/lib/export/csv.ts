@@ -52,6 +52,18 @@ const FIXED = [
   "population",
 ];
 
+/** Names of which no two are equal: a column named as one before it gets a number behind, as spreadsheets do. */
+function distinctNames(names: readonly string[]): string[] {
+  const taken = new Set(names);
+  const seen = new Set<string>();
+  return names.map((name) => {
+    let own = name;
+    for (let k = 2; seen.has(own) || (own !== name && taken.has(own)); k++) own = `${name} (${k})`;
+    seen.add(own);
+    return own;
+  });
+}
+
 /**
  * The distinct set as CSV, one line a string: the fixed columns, then one a quantity with its unit in the header.
  *
@@ -68,8 +80,10 @@ export function* writeCsv(
       throw new RangeError(`“${name}” has ${values.length} values for ${set.conformers.length} conformers.`);
     }
   }
-  const headers = columns.map(({ name, unit }) => textCell(unit === null ? name : `${name} [${unit}]`));
-  yield [...FIXED, ...headers].join(",") + LINE_END;
+  const headers = columns.map(({ name, unit }) => (unit === null ? name : `${name} [${unit}]`));
+  yield distinctNames([...FIXED, ...headers])
+    .map(textCell)
+    .join(",") + LINE_END;
   for (const [k, conformer] of set.conformers.entries()) {
     const cells = [
       numberCell(conformer.frame),

@@ -196,6 +196,17 @@ describe("CSV", () => {
     expect(parseCsv(header!)[0]!.at(-1)).toBe('\'=HYPERLINK("x","y")');
   });
 
+  test("no two columns have the same name", () => {
+    const named = (name: string) => ({ name, unit: null, values: [1] });
+    const [header] = writeCsv(setOf([conformer(1)]), [
+      named("frame"),
+      named("x"),
+      named("x"),
+      named("x (2)"),
+    ]);
+    expect(parseCsv(header!)[0]!.slice(8)).toEqual(["frame (2)", "x", "x (3)", "x (2)"]);
+  });
+
   test("numbers are bare, negative ones too, and exact", () => {
     expect([-1.5, 0.1 + 0.2, 1e21, null, Number.NaN].map(numberCell)).toEqual([
       "-1.5",

@@ -1,6 +1,9 @@
+import { and, asc, eq } from "drizzle-orm";
+import { db } from "../../db/client.server.ts";
+import { ensembleFiles, frames as frameRows } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import type { EnsembleAnswer } from "../../lib/api/schemas.ts";
-import type { IntakeQuestion } from "../../lib/intake/report.ts";
+import type { IntakeMessage, IntakeQuestion } from "../../lib/intake/report.ts";
 import { frameStrip } from "./accepted-frames.server.ts";
 import { findColumns, toLevels } from "./find-columns.server.ts";
 import { findEnsembleRow, findFiles } from "./load-ensemble.server.ts";
@@ -15,12 +18,38 @@ function open(questions: readonly IntakeQuestion[]): EnsembleAnswer["intake"]["q
   return questions.filter((question) => question.answered === undefined);
 }
 
+/** What people hold is said like what the readers hold, with the reason they gave; the first 100 as everywhere. */
+async function handHolds(ensembleId: string): Promise<IntakeMessage[]> {
+  const rows = await db
+    .select({ frame: frameRows.number, line: frameRows.line, note: frameRows.note, file: ensembleFiles.name })
+    .from(frameRows)
+    .innerJoin(
+      ensembleFiles,
+      and(eq(ensembleFiles.ensembleId, frameRows.ensembleId), eq(ensembleFiles.position, frameRows.file)),
+    )
+    .where(and(eq(frameRows.ensembleId, ensembleId), eq(frameRows.holdReason, "by-hand")))
+    .orderBy(asc(frameRows.number))
+    .limit(100);
+  return rows.map(({ frame, line, note, file }) => ({
+    code: "by-hand",
+    severity: "hold",
+    file,
+    line,
+    frame,
+    message: note ?? "Held by hand.",
+  }));
+}
+
 /** The intake report as the API gives it; access has been decided before. */
 export async function describeIntake(teamId: string, ensembleId: string): Promise<EnsembleAnswer["intake"]> {
   const { ensemble } = await findEnsembleRow(teamId, ensembleId);
-  const [messages, questions] = await Promise.all([findMessages(ensembleId), findQuestions(ensembleId)]);
+  const [messages, byHand, questions] = await Promise.all([
+    findMessages(ensembleId),
+    handHolds(ensembleId),
+    findQuestions(ensembleId),
+  ]);
   const { frames, accepted, remarked, held } = ensemble;
-  return { frames, accepted, remarked, held, messages, questions: open(questions) };
+  return { frames, accepted, remarked, held, messages: [...messages, ...byHand], questions: open(questions) };
 }
 
 /** An ensemble as the API gives it; access has been decided before. */
