@@ -24,6 +24,8 @@ export function DistinctSetSection() {
   // One step of history for one gesture: while a thumb is held the later results replace the first.
   const gesture = useRef<"open" | "fresh">("fresh");
   const [before, setBefore] = useState<{ id: string; kept: number; tolerance: number } | null>(null);
+  // Settings that were cancelled go back to those of the set that is shown.
+  const [cancelled, setCancelled] = useState(0);
   const latest = useRef(change);
   latest.current = change;
   const named = useRef<Promise<void> | null>(null);
@@ -84,8 +86,15 @@ export function DistinctSetSection() {
             </p>
           ) : null}
           <OutdatedNote onAgain={() => onAsk(request, true)} busy={asked !== null} />
-          <SiftSettings ensemble={ensemble} request={request} onAsk={onAsk} />
-          <SiftLine asked={asked} error={error} onCancel={cancel} />
+          <SiftSettings key={cancelled} ensemble={ensemble} request={request} onAsk={onAsk} />
+          <SiftLine
+            asked={asked}
+            error={error}
+            onCancel={() => {
+              cancel();
+              setCancelled(cancelled + 1);
+            }}
+          />
           {ensemble.mayCompute ? null : (
             <p className="mt-3 text-xs text-ink-3">
               {ensemble.role === "guest"

@@ -103,7 +103,14 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
       {error ? (
         <Note tone="danger" className="mt-3">
           {failureWords(error)}{" "}
-          <TextButton onClick={() => (own.error ? own : coordinates).retry()}>Try again</TextButton>
+          <TextButton
+            onClick={() => {
+              own.retry();
+              coordinates.retry();
+            }}
+          >
+            Try again
+          </TextButton>
         </Note>
       ) : coordinates.missing > 0 && rows.length > 0 ? (
         <p role="status" className="appear-late mt-2 text-xs text-ink-3">
