@@ -95,6 +95,13 @@ describe("several energies are asked, with a proposal", () => {
     expect([findings.verdict, findings.chosen, findings.proposed?.from]).toEqual(["several", null, proposed]);
   });
 
+  test.each(["H @ 2.5001 3.5001", "step 1 scf=@ mp2=-1.5 dipole=2.13"])(
+    "%s is never settled unasked",
+    (pattern) => {
+      expect(scan(frames(pattern, ["1.25", "1.1", "1.75"])).verdict).toBe("several");
+    },
+  );
+
   test("a stray number in a few frames is no rival, a name in a few frames no match", () => {
     const usual = Array.from({ length: 20 }, (_, k) => `energy=-1.${k}`);
     expect(scan([...usual, "energy=-1.5 energy_b=3.5"]).verdict).toBe("lone");

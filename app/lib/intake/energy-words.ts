@@ -13,7 +13,7 @@ export type NumberClass = "energy" | "unit" | "loose" | "whole" | "other";
 const set = (words: string) => new Set(words.split(" "));
 
 const ENERGY_WORDS = set(
-  "energy energies enthalpy gibbs helmholtz e g h etot etotal toten epot escf eelec erel ezpe scf hf uhf rhf dft mp2 mp3 mp4 ccsd ccsdt",
+  "energy energies enthalpy gibbs helmholtz e g h etot etotal toten epot escf eelec erel ezpe scf hf uhf rhf dft mp ccsd",
 );
 /** Quantities that are no energies of a conformer even where an energy stands in their name. */
 const MEASURES = set(
@@ -81,6 +81,8 @@ export function classify(number: CommentNumber): NumberClass {
 /** The nearest word that says anything decides; three are looked at. */
 function classOfWords(words: readonly string[]): NumberClass | null {
   for (const word of words.slice(-3).reverse()) {
+    // "H 1.5 2.5 3.5" is an atom on the line of a lost comment, "H = -76.4" an enthalpy.
+    if (word === "H") continue;
     const named = classOfName(word);
     if (named !== null) return named;
   }
