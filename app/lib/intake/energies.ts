@@ -1,6 +1,7 @@
 import type { SdfFields } from "../sdf/frame.ts";
 import { quoteFound } from "../text/escape.ts";
 import type { EnergyUnit } from "../units.ts";
+import { type BareDecimal, bareDecimal } from "./bare-decimal.ts";
 import { type CommentNumber, type ScannedComment, scanComment } from "./comment-numbers.ts";
 import {
   absentEnergy,
@@ -109,6 +110,12 @@ export class EnergyScan {
   add(frame: { number: number; file: string; line: number }, comment: string, fields?: SdfFields): void {
     const row = this.#rows.length;
     this.#rows.push({ frame: frame.number, file: frame.file, line: frame.line });
+    // Most large files write the energy alone: the way through all words is long, and always ends the same.
+    const bare = this.#from === null && !fields ? bareDecimal(comment) : null;
+    if (bare) {
+      trackOf(this.#positions, 1, true)?.putBare(row, bare);
+      return;
+    }
     if (this.#from !== null) this.#given.set(row, extractGiven(comment, fields, this.#from));
     const scanned = scanComment(comment);
     const extended = scanned.keyed.size > 0 && hasProperties(comment);
@@ -206,6 +213,16 @@ class Track {
 
   constructor(position: number) {
     this.position = position;
+  }
+
+  /** A number that stands alone: what `put` makes of it, without looking. */
+  putBare(row: number, number: BareDecimal): void {
+    this.values.setNumber(row, number.value, number.decimals);
+    this.position = 1;
+    this.seen += 1;
+    this.classes.set("loose", (this.classes.get("loose") ?? 0) + 1);
+    this.unitless += 1;
+    if (row < SHOWN) this.first[row] = number.text;
   }
 
   put(row: number, number: CommentNumber, comment: ScannedComment, extended: boolean): void {

@@ -100,6 +100,15 @@ export class EnergyValues {
     this.#present[row] = found ? 1 : 0;
   }
 
+  /** `set` for a number whose decimals are known. */
+  setNumber(row: number, value: number, decimals: number): void {
+    this.#pad(row + 1);
+    if (this.#problems.size > 0) this.#problems.delete(row);
+    if (decimals > this.#decimals) this.#decimals = decimals;
+    this.#values[row] = value;
+    this.#present[row] = 1;
+  }
+
   #pad(length: number): void {
     while (this.#values.length < length) {
       this.#values.push(0);

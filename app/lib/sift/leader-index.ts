@@ -12,7 +12,7 @@ const ENTRY = INDEX_DIRECTIONS + 1;
 const BINS_A_TOLERANCE = 4;
 
 /** Frames whose profiles show along which directions the ensemble spreads. */
-const SAMPLE = 128;
+const SAMPLE = 64;
 
 /** Directions along which the profiles of some frames, spread over the given rows, differ most. */
 export function profileDirections(plan: SymmetryPlan, block: FrameBlock, rows: Int32Array): Float64Array {

@@ -1,4 +1,4 @@
-const ROUNDS = 12;
+const ROUNDS = 4;
 
 /**
  * Orthonormal directions along which sets of numbers differ most: principal axes by repeated multiplication, each at
