@@ -1,5 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
+import { COPIED, readReference } from "../../../tests/factories/reference.ts";
 import { BondFinder, perceiveBonds } from "./bonds.ts";
 import { COVALENT_RADII } from "./elements.ts";
 
@@ -110,6 +111,62 @@ it("the grid finds what looking at every pair finds", () => {
     }),
     { seed: 20261201, numRuns: 60 },
   );
+});
+
+it("a finder used again finds in every frame what a fresh one finds", () => {
+  const kinds = [6, 1, 1, 1, 8, 1, 7, 6, 17, 1];
+  // A rough chain with hydrogens beside it: shaken a little it keeps its bonds, shaken more it does not.
+  const rest = (count: number): number[] =>
+    Array.from({ length: count }, (_, k) => {
+      const heavy = kinds[k % kinds.length] !== 1;
+      return heavy ? [1.4 * (k / 2.5), 0, 0] : [1.4 * (Math.floor(k / 10) * 4), Math.sin(k), Math.cos(k)];
+    }).flat();
+  const shakes = fc.array(
+    fc.record({
+      size: fc.constantFrom(0, 0.01, 0.05, 0.2, 1),
+      seed: fc.integer({ min: 1, max: 1000 }),
+      // From this atom on everything may lie far away.
+      cut: fc.option(fc.integer({ min: 1, max: 40 })),
+    }),
+    { minLength: 2, maxLength: 12 },
+  );
+  let same = 0;
+  fc.assert(
+    fc.property(fc.integer({ min: 2, max: 40 }), shakes, (count, frames) => {
+      const elements = Uint8Array.from({ length: count }, (_, k) => kinds[k % kinds.length]!);
+      const finder = new BondFinder(elements);
+      let before = "";
+      for (const { size, seed, cut } of frames) {
+        const away = (k: number) => (cut !== null && k >= 3 * cut && k % 3 === 0 ? 30 : 0);
+        const xyz = rest(count).map((v, k) => v + size * Math.sin(seed * (k + 1)) + away(k));
+        finder.find(xyz);
+        const fresh = perceiveBonds(elements, xyz);
+        const found = finder.bonds.slice(0, 2 * finder.bondCount);
+        expect(found).toEqual(fresh.bonds);
+        expect(finder.contested.slice(0, 2 * finder.contestedCount)).toEqual(fresh.contested);
+        expect(finder.shared.slice(0, 3 * finder.sharedCount)).toEqual(fresh.shared);
+        expect(finder.closestDistance < 0.5).toBe(fresh.closest !== null);
+        if (before === found.join() && found.length > 0) same += 1;
+        before = found.join();
+      }
+    }),
+    { seed: 20261203, numRuns: 500 },
+  );
+  expect(same).toBeGreaterThan(500);
+});
+
+it("frames of real ensembles have the same bonds one after the other as one by one", () => {
+  for (const [file, expected] of COPIED) {
+    const { frames } = readReference(file, expected);
+    const stride = 3 * frames.block.atoms;
+    const finder = new BondFinder(frames.elements);
+    for (let k = 0; k < Math.min(100, frames.block.count); k++) {
+      finder.find(frames.block.positions, k * stride);
+      const fresh = perceiveBonds(frames.elements, frames.block.positions, k * stride);
+      expect(finder.bonds.slice(0, 2 * finder.bondCount)).toEqual(fresh.bonds);
+      expect(finder.contested.slice(0, 2 * finder.contestedCount)).toEqual(fresh.contested);
+    }
+  }
 });
 
 it("a finder used again forgets the frame before", () => {

@@ -1,4 +1,5 @@
 import type { Elements } from "../structure.ts";
+import { BondCheck } from "./bond-check.ts";
 import { COVALENT_RADII } from "./elements.ts";
 import { Grid } from "./grid.ts";
 
@@ -11,6 +12,8 @@ export const TOO_CLOSE = 0.5;
 
 /** Above this number of atoms a grid finds the neighbours; below, looking at every pair is as fast. */
 const GRID_FROM = 200;
+/** Frames that are looked at in full after the check on equal bonds has failed; doubles with every failure. */
+const MOST_IN_FULL = 64;
 
 /** Elements that hydrogens bridge (boranes, alanes, metal hydrides): there two bonds to one H are real. */
 const bridged = (z: number): boolean =>
@@ -89,6 +92,11 @@ export class BondFinder {
   private readonly near: Int32Array;
   private readonly xyz: Float64Array;
   private grid: Grid | null = null;
+  /** Knows the bonds in `bonds`, where they came from a frame that had nothing else to tell of. */
+  private check: BondCheck | null = null;
+  private clean = false;
+  private inFull = 0;
+  private failures = 0;
 
   constructor(elements: Elements) {
     this.elements = elements;
@@ -119,7 +127,6 @@ export class BondFinder {
 
   /** @param offset index of the frame's first number in `positions` */
   find(positions: ArrayLike<number>, offset = 0): void {
-    this.bondCount = 0;
     this.contestedCount = 0;
     this.sharedCount = 0;
     this.closestDistance = Infinity;
@@ -132,6 +139,9 @@ export class BondFinder {
       xyz[3 * a + 1] = positions[from + 1]!;
       xyz[3 * a + 2] = positions[from + 2]!;
     }
+    if (this.isAsBefore()) return;
+    this.check = null;
+    this.bondCount = 0;
     if (atoms.length > GRID_FROM) this.findByGrid();
     else this.findByPairs();
     for (let k = 0; k < this.hydrogens.length; k++) {
@@ -141,6 +151,44 @@ export class BondFinder {
         this.keepNearest(h, this.contested, this.contestedCount);
       }
     }
+    this.clean = this.contestedCount === 0 && this.sharedCount === 0 && this.closestDistance === Infinity;
+  }
+
+  /** Most frames have the bonds of the frame before: then `bonds` stays as it is. */
+  private isAsBefore(): boolean {
+    if (this.inFull > 0) {
+      this.inFull -= 1;
+      return false;
+    }
+    if (!this.clean) return false;
+    this.check ??= this.makeCheck();
+    if (this.check.holds(this.xyz)) {
+      this.failures = 0;
+      return true;
+    }
+    this.inFull = Math.min(MOST_IN_FULL, 2 ** this.failures) - 1;
+    this.failures = Math.min(10, this.failures + 1);
+    return false;
+  }
+
+  private makeCheck(): BondCheck {
+    const { atoms, elements, kinds, kindCount } = this;
+    const local = new Int32Array(elements.length);
+    atoms.forEach((atom, k) => {
+      local[atom] = k;
+    });
+    const pairOf = (a: number, b: number) => kinds[atoms[a]!]! * kindCount + kinds[atoms[b]!]!;
+    const rule = {
+      count: atoms.length,
+      isHydrogen: (a: number) => elements[atoms[a]!] === 1,
+      bondLimit: (a: number, b: number) => this.bondLimit[pairOf(a, b)]!,
+      contestedLimit: (a: number, b: number) => this.contestedLimit[pairOf(a, b)]!,
+      tooClose: TOO_CLOSE,
+    };
+    return new BondCheck(
+      rule,
+      this.bonds.subarray(0, 2 * this.bondCount).map((atom) => local[atom]!),
+    );
   }
 
   private findByPairs(): void {
