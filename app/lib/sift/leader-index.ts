@@ -11,11 +11,25 @@ const ENTRY = INDEX_DIRECTIONS + 1;
 /** Widths of a bin in the tolerance: finer ones follow its edges better and are more. */
 const BINS_A_TOLERANCE = 4;
 
+/** Leaders at hand from which on bins pay. */
+const BINS_FROM = 256;
 /** Frames whose profiles show along which directions the ensemble spreads. */
 const SAMPLE = 64;
 
-/** Directions along which the profiles of some frames, spread over the given rows, differ most. */
-export function profileDirections(plan: SymmetryPlan, block: FrameBlock, rows: Int32Array): Float64Array {
+/** Directions along which the profiles of some frames, spread over the given rows, differ most; found when asked for. */
+export function profileDirections(
+  plan: SymmetryPlan,
+  block: FrameBlock,
+  rows: Int32Array,
+): () => Float64Array {
+  let found: Float64Array | null = null;
+  return () => {
+    found ??= findDirections(plan, block, rows);
+    return found;
+  };
+}
+
+function findDirections(plan: SymmetryPlan, block: FrameBlock, rows: Int32Array): Float64Array {
   const length = profileLength(plan);
   const count = Math.min(SAMPLE, rows.length);
   const sample = new Float64Array(count * length);
@@ -38,11 +52,15 @@ interface Bin {
 
 /**
  * Finds leaders that may lie within the RMSD tolerance of a shape. Profiles (see `writeProfile`) of such pairs differ
- * by at most a limit, and so do their projections on orthonormal directions: leaders are kept in bins along the first
- * direction, so that most are never looked at, however many there are.
+ * by at most a limit, and so do their projections on orthonormal directions: once leaders are many, they are kept in
+ * bins along the first direction, so that most are never looked at.
  */
 export class LeaderIndex {
-  private readonly bins = new Map<number, Bin>();
+  /** Numbers of all leaders; those before `from` have been left behind. */
+  private leaders = new Int32Array(64);
+  private entered = 0;
+  private from = 0;
+  private bins: Map<number, Bin> | null = null;
   private readonly width: number;
   private readonly reach: number;
   private readonly square: number;
@@ -52,15 +70,17 @@ export class LeaderIndex {
 
   /**
    * @param n atoms of a profile
-   * @param directions rows of `n` numbers from `principalDirections`, at most INDEX_DIRECTIONS
+   * @param directions rows of `n` numbers as `principalDirections` gives, at most INDEX_DIRECTIONS
    * @param profiles of the leaders, by their numbers
    * @param limit square of the largest difference of two profiles, from `squareLimit`
+   * @param binsFrom leaders at hand from which on there are bins
    */
   constructor(
     private readonly n: number,
-    private readonly directions: Float64Array,
+    private readonly directions: () => Float64Array,
     private readonly profiles: ShapeStore,
     private readonly limit: number,
+    private readonly binsFrom = BINS_FROM,
   ) {
     // Projections round, and directions are at right angles to within rounding only.
     this.square = limit * (1 + 1e-9) + 1e-18;
@@ -70,22 +90,13 @@ export class LeaderIndex {
 
   /** Enters a leader, whose number is above all before. */
   add(leader: number, profile: Float64Array): void {
-    this.project(profile);
-    const { places } = this;
-    const key = Math.floor(places[0]! / this.width);
-    let bin = this.bins.get(key);
-    if (!bin) {
-      bin = { entries: new Float64Array(8 * ENTRY), count: 0, from: 0 };
-      this.bins.set(key, bin);
+    if (this.entered === this.leaders.length) {
+      const larger = new Int32Array(2 * this.entered);
+      larger.set(this.leaders);
+      this.leaders = larger;
     }
-    const at = ENTRY * bin.count++;
-    if (at === bin.entries.length) {
-      const larger = new Float64Array(2 * at);
-      larger.set(bin.entries);
-      bin.entries = larger;
-    }
-    for (let d = 0; d < INDEX_DIRECTIONS; d++) bin.entries[at + d] = places[d]!;
-    bin.entries[at + INDEX_DIRECTIONS] = leader;
+    this.leaders[this.entered++] = leader;
+    if (this.bins) this.putInBin(this.bins, leader, profile, 0);
   }
 
   /**
@@ -94,8 +105,14 @@ export class LeaderIndex {
    * @param first never falls from call to call
    */
   near(profile: Float64Array, first: number): Int32Array {
-    this.project(profile);
+    while (this.from < this.entered && this.leaders[this.from]! < first) this.from += 1;
     this.count = 0;
+    if (!this.bins && this.entered - this.from < this.binsFrom) {
+      this.lookAtAll(profile);
+      return this.found.subarray(0, this.count);
+    }
+    this.bins ??= this.makeBins();
+    this.project(profile, 0);
     const { width, reach, places } = this;
     const last = Math.floor((places[0]! + reach) / width);
     for (let key = Math.floor((places[0]! - reach) / width); key <= last; key++) {
@@ -105,11 +122,57 @@ export class LeaderIndex {
     return this.found.subarray(0, this.count).sort();
   }
 
-  private project(profile: Float64Array): void {
-    const { n, directions, places } = this;
+  private lookAtAll(profile: Float64Array): void {
+    const { n, limit, profiles } = this;
+    this.needRoom(this.entered - this.from);
+    for (let i = this.from; i < this.entered; i++) {
+      const k = this.leaders[i]!;
+      if (profilesExceed(n, profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit)) continue;
+      this.found[this.count++] = k;
+    }
+  }
+
+  private makeBins(): Map<number, Bin> {
+    const bins = new Map<number, Bin>();
+    for (let i = this.from; i < this.entered; i++) {
+      const leader = this.leaders[i]!;
+      this.putInBin(bins, leader, this.profiles.arrayOf(leader), this.profiles.offsetOf(leader));
+    }
+    return bins;
+  }
+
+  private putInBin(bins: Map<number, Bin>, leader: number, profile: Float64Array, at: number): void {
+    this.project(profile, at);
+    const { places } = this;
+    const key = Math.floor(places[0]! / this.width);
+    let bin = bins.get(key);
+    if (!bin) {
+      bin = { entries: new Float64Array(8 * ENTRY), count: 0, from: 0 };
+      bins.set(key, bin);
+    }
+    const to = ENTRY * bin.count++;
+    if (to === bin.entries.length) {
+      const larger = new Float64Array(2 * to);
+      larger.set(bin.entries);
+      bin.entries = larger;
+    }
+    for (let d = 0; d < INDEX_DIRECTIONS; d++) bin.entries[to + d] = places[d]!;
+    bin.entries[to + INDEX_DIRECTIONS] = leader;
+  }
+
+  private needRoom(more: number): void {
+    if (this.count + more <= this.found.length) return;
+    const larger = new Int32Array(2 * (this.count + more));
+    larger.set(this.found);
+    this.found = larger;
+  }
+
+  private project(profile: Float64Array, at: number): void {
+    const { n, places } = this;
+    const directions = this.directions();
     for (let d = 0; d * n < directions.length; d++) {
       let sum = 0;
-      for (let k = 0; k < n; k++) sum += directions[d * n + k]! * profile[1 + k]!;
+      for (let k = 0; k < n; k++) sum += directions[d * n + k]! * profile[at + 1 + k]!;
       places[d] = sum;
     }
   }
@@ -118,11 +181,7 @@ export class LeaderIndex {
     const { entries } = bin;
     const { n, limit, square, profiles, places } = this;
     while (bin.from < bin.count && entries[ENTRY * bin.from + INDEX_DIRECTIONS]! < first) bin.from += 1;
-    if (this.count + bin.count > this.found.length) {
-      const larger = new Int32Array(2 * (this.count + bin.count));
-      larger.set(this.found);
-      this.found = larger;
-    }
+    this.needRoom(bin.count);
     const a = places[0]!;
     const b = places[1]!;
     const c = places[2]!;
