@@ -109,6 +109,18 @@ describe("long alkanes", () => {
     }
   });
 
+  it("a long search may be ended from outside", () => {
+    const plan = makePlan(alkaneGraph(60), "all");
+    const comparer = new SymmetricRmsd(plan);
+    let asked = 0;
+    comparer.interrupt = () => {
+      if (++asked === 3) throw new Error("enough");
+    };
+    const [x, y] = [shapeOf(plan, coil(60, 1)), shapeOf(plan, coil(60, 2))];
+    expect(() => comparer.minimum(x, 0, y, 0)).toThrow("enough");
+    expect(asked).toBe(3);
+  });
+
   it("C60H122 with its hydrogens exchanged, shaken and turned end for end is found again exactly", () => {
     const plan = makePlan(alkaneGraph(60), "all");
     const x = coil(60, 1);

@@ -150,8 +150,12 @@ export class PairMatrixWork {
     const comparer = new SymmetricRmsd(plan);
     const mirror = this.input.mirror ?? false;
     return (i, from, to, hooks) => {
-      for (let j = from; j < to; j++) {
+      const look = () => {
         if (hooks.cancelled?.()) throw new SiftCancelled();
+      };
+      comparer.interrupt = look;
+      for (let j = from; j < to; j++) {
+        look();
         const found = comparer.minimum(shapes, length * i, shapes, length * j, mirror);
         if (!found.exact) this.inexact += 1;
         this.row[j - from] = found.rmsd;

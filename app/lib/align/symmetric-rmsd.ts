@@ -7,6 +7,9 @@ import { distancesExceed } from "./shape.ts";
 /** Nodes of the search tree that one comparison may look at before its answer counts as a bound from above. */
 export const DEFAULT_NODE_LIMIT = 200_000;
 
+/** Nodes between two calls of `interrupt`: some 20 ms. */
+const NODES_A_LOOK = 8192;
+
 /** Nodes after which the sharper, dearer bound joins in: easy pairs are done by then. */
 const PLAIN_NODES = 64;
 
@@ -39,6 +42,8 @@ export class SymmetricRmsd {
   private readonly map: Int32Array;
   /** Nodes looked at since the object was made: a measure of work that does not depend on the machine. */
   nodes = 0;
+  /** Called now and then during a long search; ends it by throwing. */
+  interrupt: (() => void) | null = null;
   private cut = false;
 
   constructor(
@@ -191,6 +196,7 @@ export class SymmetricRmsd {
       return root > need ? root : -1;
     }
     let depth = 0;
+    let look = NODES_A_LOOK;
     nodes += this.open(0, need, spread / 2);
     while (depth >= 0) {
       const next = this.cursor[depth]!;
@@ -210,6 +216,10 @@ export class SymmetricRmsd {
       if (nodes > this.nodeLimit) {
         this.cut = true;
         break;
+      }
+      if (nodes > look) {
+        look = nodes + NODES_A_LOOK;
+        this.interrupt?.();
       }
       tree.descend(depth, k);
       // The margin covers the rounding of the sharper bound, whose parts are carried from node to node.

@@ -7,6 +7,8 @@ export const SYMMETRY_TOLERANCE = 0.1;
 /** Å: and no atom lies further from the place it maps to. */
 export const SYMMETRY_REACH = 0.5;
 const DEFAULT_NODE_LIMIT = 100_000;
+/** Nodes between two calls of `interrupt`: each may cost a look at all pairs of atoms. */
+const NODES_A_LOOK = 256;
 
 /**
  * Symmetry numbers of conformers of one molecule: how many exchanges of equivalent atoms (all atoms, hydrogens
@@ -25,6 +27,8 @@ export class SymmetryNumber {
   private readonly rotation = new Float64Array(9);
   /** Nodes looked at since the object was made. */
   nodes = 0;
+  /** Called now and then during a long count; ends it by throwing. */
+  interrupt: (() => void) | null = null;
 
   /** @param plan over all atoms: `makePlan(graph, "all")` */
   constructor(
@@ -81,6 +85,7 @@ export class SymmetryNumber {
         }
       } else if (depth < identical) identical = depth;
       if (++this.nodes > limit) return null;
+      if (this.nodes % NODES_A_LOOK === 0) this.interrupt?.();
       if (tree.childHopeless(depth, k, need)) continue;
       tree.descend(depth, k);
       if (!this.distancesKept(shape, at, depth + 1)) continue;

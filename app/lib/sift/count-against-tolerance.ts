@@ -102,6 +102,7 @@ class ToleranceWalk {
     const plan = makePlan(graph, recipe.atoms, { symmetry: recipe.symmetry });
     this.walk = planWalk(numbers, energies, recipe.window);
     this.comparer = new SymmetricRmsd(plan);
+    this.comparer.interrupt = () => this.look();
     this.store = new ShapeStore(plan.shapeLength);
     this.profiles = new ShapeStore(profileLength(plan));
     this.shape = new Float64Array(plan.shapeLength);

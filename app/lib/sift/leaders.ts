@@ -89,6 +89,8 @@ class LeaderWalk {
   ) {
     this.comparer = new SymmetricRmsd(plan);
     this.symmetry = new SymmetryNumber(whole);
+    this.comparer.interrupt = () => this.look();
+    this.symmetry.interrupt = () => this.look();
     this.store = new ShapeStore(plan.shapeLength);
     this.shape = new Float64Array(plan.shapeLength);
     this.profile = new Float64Array(profileLength(plan));
