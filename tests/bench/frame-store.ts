@@ -6,13 +6,12 @@ export class FrameStore {
   private atoms = 0;
   private count = 0;
 
-  /** @param share of the source that was read when the first frames came: tells how many will come */
-  add(positions: Float64Array, share: number): void {
+  /** @param expected how many frames there may be in all */
+  add(positions: Float64Array, expected: number): void {
     if (this.count === 0) this.atoms = positions.length / 3;
     const at = this.count * positions.length;
     if (at + positions.length > this.positions.length) {
-      const expected = Math.ceil((1.02 * (this.count + 64)) / Math.max(share, 1e-6));
-      const frames = this.count === 0 ? Math.min(expected, 100_000) : Math.ceil(1.2 * this.count);
+      const frames = Math.ceil(Math.max(expected, 1.2 * this.count));
       const larger = new Float64Array(frames * positions.length);
       larger.set(this.positions);
       this.positions = larger;

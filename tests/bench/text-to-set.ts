@@ -92,6 +92,8 @@ async function readInput(file: string, recipe: SiftRecipe): Promise<SiftInput & 
   const store = new FrameStore();
   let frames = 0;
   const take = (found: ReturnType<XyzReader["push"]>, share: number): void => {
+    // A little more than the share of the file that is read lets expect; memory is used where it is written only.
+    const expected = Math.min(100_000, (1.05 * (frames + found.length + 1)) / share);
     for (const frame of found) {
       if (frame.problem) throw new Error(frame.problem.message);
       const { number, line, elements, isotopes, positions, charge, multiplicity, comment } = frame;
@@ -107,7 +109,7 @@ async function readInput(file: string, recipe: SiftRecipe): Promise<SiftInput & 
         energy: comment,
       });
       scan.add(frame, comment);
-      store.add(positions, share);
+      store.add(positions, expected);
       frames += 1;
     }
   };
