@@ -5,9 +5,13 @@ import { fold } from "../chem/refine.ts";
  * 50,000 frames two different ones share them with a chance of one in ten million.
  */
 export class CopyFinder {
-  private readonly seen = new Map<number, number>();
+  /** Open table of hashes and the frames that had them first, 0 where a place is free. A Map would box every hash. */
+  private hashes = new Float64Array(1024);
+  private frames = new Int32Array(1024);
+  private count = 0;
 
   /**
+   * @param frame above 0
    * @param shape number of the sequence of elements
    * @param energy energy or comment energy as written, where there is one: part of what has to agree
    * @returns the first frame with the same content, or null
@@ -26,10 +30,34 @@ export class CopyFinder {
       high = fold(high, energy!.charCodeAt(k));
       low = fold(low, energy!.charCodeAt(k) + 7);
     }
-    const key = (high >>> 11) * 2 ** 32 + (low >>> 0);
-    const first = this.seen.get(key);
-    if (first !== undefined) return first;
-    this.seen.set(key, frame);
+    const hash = (high >>> 11) * 2 ** 32 + (low >>> 0);
+    const at = this.placeOf(hash);
+    if (this.frames[at] !== 0) return this.frames[at]!;
+    this.hashes[at] = hash;
+    this.frames[at] = frame;
+    this.count += 1;
+    if (2 * this.count > this.frames.length) this.grow();
     return null;
+  }
+
+  /** Where a hash stands, or the free place where it belongs. */
+  private placeOf(hash: number): number {
+    const { hashes, frames } = this;
+    const last = frames.length - 1;
+    let at = hash % frames.length;
+    while (frames[at] !== 0 && hashes[at] !== hash) at = (at + 1) & last;
+    return at;
+  }
+
+  private grow(): void {
+    const { hashes, frames } = this;
+    this.hashes = new Float64Array(2 * hashes.length);
+    this.frames = new Int32Array(2 * frames.length);
+    for (let k = 0; k < frames.length; k++) {
+      if (frames[k] === 0) continue;
+      const at = this.placeOf(hashes[k]!);
+      this.hashes[at] = hashes[k]!;
+      this.frames[at] = frames[k]!;
+    }
   }
 }

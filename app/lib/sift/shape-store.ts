@@ -6,6 +6,8 @@ const CHUNK = 128;
  */
 export class ShapeStore {
   private readonly chunks: (Float64Array | null)[] = [];
+  /** A chunk that was left behind, for the next one needed: else they would pile up until memory is collected. */
+  private spare: Float64Array | null = null;
   private released = 0;
   private length = 0;
 
@@ -13,7 +15,10 @@ export class ShapeStore {
 
   push(shape: Float64Array): void {
     const chunk = Math.floor(this.length / CHUNK);
-    if (chunk === this.chunks.length) this.chunks.push(new Float64Array(CHUNK * this.shapeLength));
+    if (chunk === this.chunks.length) {
+      this.chunks.push(this.spare ?? new Float64Array(CHUNK * this.shapeLength));
+      this.spare = null;
+    }
     this.chunks[chunk]!.set(shape, (this.length % CHUNK) * this.shapeLength);
     this.length += 1;
   }
@@ -31,6 +36,7 @@ export class ShapeStore {
   /** Shapes before k are not asked for again. */
   release(k: number): void {
     for (const whole = Math.floor(k / CHUNK); this.released < whole; this.released++) {
+      this.spare = this.chunks[this.released] ?? null;
       this.chunks[this.released] = null;
     }
   }
