@@ -33,6 +33,33 @@ export const answersSchema = z.object({
   energyTemperature: z.number().nullable().default(null),
 });
 
+/** Orders per bond (in the order of the ensemble's bonds), charge and unpaired electrons per atom. */
+export const bondTableSchema = z.object({
+  origin: z.enum(["file", "smiles"]),
+  orders: z.array(z.number()),
+  charges: z.array(z.number()),
+  radicals: z.array(z.number()),
+});
+
+export const frameFieldsSchema = z.array(z.tuple([z.string(), z.string()]));
+
+/** How a column came to be, where it was not read from a file. */
+export const columnDefinitionSchema = z.discriminatedUnion("type", [
+  /** A formula over columns of the ensemble; `inputs` maps the names in `text` to column ids. */
+  z.object({
+    type: z.literal("expression"),
+    text: z.string(),
+    inputs: z.array(z.object({ name: z.string(), column: z.string() })),
+  }),
+  /** Measured on the structures: atoms from 1; several pairs where equivalent atoms are averaged together. */
+  z.object({
+    type: z.literal("observable"),
+    observable: z.enum(["distance", "angle", "torsion", "coupling"]),
+    atoms: z.array(z.array(z.number().int())),
+    parameters: z.record(z.string(), z.union([z.number(), z.string()])),
+  }),
+]);
+
 /** Populations of a distinct set at 298.15 K; `shares` in falling order, the rest in the last. */
 export const siftSummarySchema = z.object({
   shares: z.array(z.number()),
@@ -52,6 +79,8 @@ export const users = mysqlTable(
     demo: boolean().notNull().default(false),
     createdAt: timeColumn().notNull(),
     disabledAt: timeColumn(),
+    /** Asked to be deleted: no sign-in from then on, undone within 30 days, then purged. */
+    deletedAt: timeColumn(),
   },
   (t) => [uniqueIndex("users_email").on(t.email)],
 );
@@ -83,6 +112,8 @@ export const mailTokens = mysqlTable(
       .notNull()
       .references(() => users.id, { onDelete: "cascade" }),
     purpose: varchar({ length: 20 }).notNull(),
+    /** What the act is about: the new address of a change of address. */
+    data: anyJson(),
     createdAt: timeColumn().notNull(),
     endsAt: timeColumn().notNull(),
     usedAt: timeColumn(),
@@ -94,7 +125,11 @@ export const teams = mysqlTable("teams", {
   id: idColumn().primaryKey(),
   name: varchar({ length: 120 }).notNull(),
   demo: boolean().notNull().default(false),
+  /** Longest life of a read-only link, days. */
+  linkDays: int().notNull().default(90),
   createdAt: timeColumn().notNull(),
+  /** Undone within 30 days, then purged. */
+  deletedAt: timeColumn(),
 });
 
 export const members = mysqlTable(
@@ -110,6 +145,26 @@ export const members = mysqlTable(
     createdAt: timeColumn().notNull(),
   },
   (t) => [primaryKey({ columns: [t.teamId, t.userId] }), index("members_user").on(t.userId)],
+);
+
+/** Invitations into a team by mail: the secret is in the message only, its SHA-256 here. */
+export const invitations = mysqlTable(
+  "invitations",
+  {
+    id: idColumn().primaryKey(),
+    teamId: idColumn()
+      .notNull()
+      .references(() => teams.id, { onDelete: "cascade" }),
+    email: varchar({ length: 254 }).notNull(),
+    role: varchar({ length: 10, enum: ["owner", "analyst", "reader"] }).notNull(),
+    tokenSha: sha256Column().notNull(),
+    createdBy: idColumn(),
+    createdAt: timeColumn().notNull(),
+    endsAt: timeColumn().notNull(),
+    usedAt: timeColumn(),
+    revokedAt: timeColumn(),
+  },
+  (t) => [uniqueIndex("invitations_token").on(t.tokenSha), index("invitations_team").on(t.teamId)],
 );
 
 export const apiTokens = mysqlTable(
@@ -209,6 +264,11 @@ export const ensembles = mysqlTable(
     elements: bytesColumn().notNull(),
     /** Bonds of the group as little-endian int32 pairs. */
     bonds: bytesColumn().notNull(),
+    /**
+     * Bond orders, charges and radicals for the drawing, SDF and E/Z: from the file or from a SMILES; null where
+     * they are perceived from coordinates when wanted. They never enter identity or RMSD.
+     */
+    bondTable: jsonColumn(bondTableSchema)(),
     /** Labels of the atoms as the file writes them, where they differ from the element. */
     atomLabels: anyJson(),
     /** Charge, multiplicity and configuration of the group: what a further batch is compared with. */
@@ -257,10 +317,35 @@ export const ensembleFiles = mysqlTable(
       .references(() => sources.id),
     name: varchar({ length: 255 }).notNull(),
     format: varchar({ length: 20 }).notNull(),
+    /** Name of the entry where the file came out of a zip archive (the source is the archive). */
+    entry: varchar({ length: 255 }),
     firstFrame: int().notNull(),
     frames: int().notNull(),
   },
   (t) => [primaryKey({ columns: [t.ensembleId, t.position] }), index("ensemble_files_source").on(t.sourceId)],
+);
+
+/** One upload into an ensemble, the first included: what the same bytes sent again are recognised by. */
+export const batches = mysqlTable(
+  "batches",
+  {
+    ensembleId: idColumn()
+      .notNull()
+      .references(() => ensembles.id, { onDelete: "cascade" }),
+    /** As `ensemble_files.batch`; 0 is the first upload. */
+    batch: int().notNull(),
+    filesSha: sha256Column().notNull(),
+    answers: jsonColumn(answersSchema)().notNull(),
+    /** What the search is called by its people, where they say. */
+    name: varchar({ length: 200 }),
+    createdBy: idColumn(),
+    createdByToken: idColumn(),
+    createdAt: timeColumn().notNull(),
+  },
+  (t) => [
+    primaryKey({ columns: [t.ensembleId, t.batch] }),
+    uniqueIndex("batches_files").on(t.ensembleId, t.filesSha),
+  ],
 );
 
 /**
@@ -299,6 +384,8 @@ export const frames = mysqlTable(
     label: varchar({ length: 200 }),
     /** Comment line as read, the source of its numbers; cut at 64 kB. */
     comment: text().notNull(),
+    /** Data fields of an SDF record in file order, [name, value] pairs: the source of its numbers as the comment is. */
+    fields: jsonColumn(frameFieldsSchema)(),
     state: varchar({ length: 8, enum: ["accepted", "remarked", "held"] }).notNull(),
     /** What the reader and the classifier say, before anybody decides otherwise. */
     readState: varchar({ length: 8, enum: ["accepted", "remarked", "held"] }).notNull(),
@@ -361,6 +448,17 @@ export const columns = mysqlTable(
       .references(() => ensembles.id, { onDelete: "cascade" }),
     name: varchar({ length: 120 }).notNull(),
     kind: varchar({ length: 10, enum: ["energy", "property"] }).notNull(),
+    /** Level of the geometry where it is another than that of the energy; null: the same, or not said. */
+    geometryLevel: varchar({ length: 120 }),
+    solvent: varchar({ length: 120 }),
+    /** Per-atom properties: the quantity that they share ("shift"), and the atom from 1. */
+    quantity: varchar({ length: 120 }),
+    atom: int(),
+    /** How it was computed; null where it was read from a file. */
+    definition: jsonColumn(columnDefinitionSchema)(),
+    /** False while an energy is only taken as electronic because nobody said. */
+    kindStated: boolean().notNull().default(false),
+    createdBy: idColumn(),
     /** Order of arrival among the levels: fixes hue and marker for good. */
     ordinal: int().notNull(),
     energyKind: varchar({ length: 12, enum: ["electronic", "zero-point", "enthalpy", "free"] }),
@@ -434,6 +532,166 @@ export const sifts = mysqlTable(
   ],
 );
 
+/** Shortest distances of all pairs of frames of one atom set: computed by a job, kept for the asking. */
+export const pairMatrices = mysqlTable(
+  "pair_matrices",
+  {
+    id: idColumn().primaryKey(),
+    ensembleId: idColumn()
+      .notNull()
+      .references(() => ensembles.id, { onDelete: "cascade" }),
+    /** Checksum of atom set, mirror choice and frames with their coordinates. */
+    inputSha: sha256Column().notNull(),
+    recipe: anyJson().notNull(),
+    /** Frame numbers of its rows. */
+    numbers: anyJson().notNull(),
+    jobId: idColumn().notNull(),
+    createdAt: timeColumn().notNull(),
+  },
+  (t) => [uniqueIndex("pair_matrices_same").on(t.ensembleId, t.inputSha)],
+);
+
+/** Packed lower triangle without diagonal as little-endian floats, in blocks of about 1 MB. */
+export const pairMatrixBlocks = mysqlTable(
+  "pair_matrix_blocks",
+  {
+    matrixId: idColumn()
+      .notNull()
+      .references(() => pairMatrices.id, { onDelete: "cascade" }),
+    position: int().notNull(),
+    data: bytesColumn().notNull(),
+  },
+  (t) => [primaryKey({ columns: [t.matrixId, t.position] })],
+);
+
+/** A structure from outside that an ensemble is compared with; it takes no part in any computation of it. */
+export const outsideStructures = mysqlTable(
+  "outside_structures",
+  {
+    id: idColumn().primaryKey(),
+    ensembleId: idColumn()
+      .notNull()
+      .references(() => ensembles.id, { onDelete: "cascade" }),
+    name: varchar({ length: 200 }).notNull(),
+    sourceId: idColumn()
+      .notNull()
+      .references(() => sources.id),
+    /** Elements, positions, mapping onto the ensemble's atoms, energy where it carries one. */
+    data: anyJson().notNull(),
+    createdBy: idColumn(),
+    createdAt: timeColumn().notNull(),
+    deletedAt: timeColumn(),
+  },
+  (t) => [index("outside_structures_ensemble").on(t.ensembleId, t.createdAt)],
+);
+
+/** A refinement plan: its steps and alternatives as the page edits them. */
+export const plans = mysqlTable(
+  "plans",
+  {
+    id: idColumn().primaryKey(),
+    ensembleId: idColumn()
+      .notNull()
+      .references(() => ensembles.id, { onDelete: "cascade" }),
+    name: varchar({ length: 120 }).notNull(),
+    plan: anyJson().notNull(),
+    version: int().notNull().default(1),
+    createdBy: idColumn(),
+    createdAt: timeColumn().notNull(),
+    changedAt: timeColumn().notNull(),
+  },
+  (t) => [uniqueIndex("plans_name").on(t.ensembleId, t.name)],
+);
+
+// --- hand-over --------------------------------------------------------------------------------
+
+/** Numbered, immutable snapshots: triggers refuse update and delete. */
+export const editions = mysqlTable(
+  "editions",
+  {
+    id: idColumn().primaryKey(),
+    /** No foreign key: a key that cascades would change what must not change; ids are never used again. */
+    teamId: idColumn().notNull(),
+    ensembleId: idColumn().notNull(),
+    /** Counts the editions of the ensemble from 1. */
+    number: int().notNull(),
+    title: varchar({ length: 200 }).notNull(),
+    remark: text().notNull(),
+    /** Recipes of everything shown: sift, temperature, weights, levels, comparisons, averages, seeds. */
+    recipe: anyJson().notNull(),
+    /** SHA-256 of every input: files, accepted frames, columns. */
+    inputs: anyJson().notNull(),
+    codeVersion: varchar({ length: 40 }).notNull(),
+    /** Everything that the edition shows, as JSON text; `contentSha` is of its bytes. */
+    content: longTextColumn().notNull(),
+    contentSha: sha256Column().notNull(),
+    /** Positions of the frames shown: little-endian doubles [frame][atom][xyz]. */
+    positions: bytesColumn().notNull(),
+    /** Name, size and SHA-256 of each file handed out with it. */
+    files: anyJson().notNull(),
+    createdBy: idColumn(),
+    createdAt: timeColumn().notNull(),
+  },
+  (t) => [
+    uniqueIndex("editions_number").on(t.ensembleId, t.number),
+    index("editions_team").on(t.teamId, t.createdAt),
+  ],
+);
+
+/** Runs of "recompute and verify": newest last. */
+export const verifications = mysqlTable(
+  "verifications",
+  {
+    id: idColumn().primaryKey(),
+    editionId: idColumn()
+      .notNull()
+      .references(() => editions.id),
+    same: boolean().notNull(),
+    /** Files compared, with both checksums where they differ. */
+    files: anyJson().notNull(),
+    codeVersion: varchar({ length: 40 }).notNull(),
+    seconds: double().notNull(),
+    createdBy: idColumn(),
+    createdAt: timeColumn().notNull(),
+  },
+  (t) => [index("verifications_edition").on(t.editionId, t.createdAt)],
+);
+
+/** Read-only links to one edition: the secret is shown once, its SHA-256 kept. */
+export const links = mysqlTable(
+  "links",
+  {
+    id: idColumn().primaryKey(),
+    teamId: idColumn().notNull(),
+    editionId: idColumn()
+      .notNull()
+      .references(() => editions.id),
+    secretSha: sha256Column().notNull(),
+    /** First characters of the secret, for recognition. */
+    prefix: varchar({ length: 8 }).notNull(),
+    /** For whom it was made. */
+    label: varchar({ length: 120 }).notNull().default(""),
+    /** Whom to ask, as its maker wrote it. */
+    contact: varchar({ length: 200 }).notNull().default(""),
+    sources: boolean().notNull().default(false),
+    logbook: boolean().notNull().default(false),
+    createdBy: idColumn(),
+    createdAt: timeColumn().notNull(),
+    endsAt: timeColumn().notNull(),
+    /** Ended by hand. */
+    revokedAt: timeColumn(),
+    opened: int().notNull().default(0),
+    openedAt: timeColumn(),
+    /** When the reminder of its end was queued. */
+    remindedAt: timeColumn(),
+  },
+  (t) => [
+    uniqueIndex("links_secret").on(t.secretSha),
+    index("links_edition").on(t.editionId),
+    index("links_team").on(t.teamId),
+  ],
+);
+
 // --- record -----------------------------------------------------------------------------------
 
 /** Append-only: triggers refuse update and delete. */
@@ -461,7 +719,9 @@ export const mailQueue = mysqlTable(
     id: idColumn().primaryKey(),
     recipient: varchar({ length: 254 }).notNull(),
     subject: varchar({ length: 200 }).notNull(),
+    /** Plain text. */
     body: text().notNull(),
+    html: text(),
     attempts: tinyint().notNull().default(0),
     nextTryAt: timeColumn().notNull(),
     sentAt: timeColumn(),
