@@ -15,12 +15,31 @@ const counts = { frames: z.number(), accepted: z.number(), remarked: z.number(),
 
 export const logbookEntrySchema = z.discriminatedUnion("type", [
   z.object({ type: z.literal("sign-up"), data: z.object({}) }),
-  z.object({ type: z.literal("sign-in"), data: z.object({}) }),
+  /** `browser` is the start of a checksum of what the browser calls itself. */
+  z.object({ type: z.literal("sign-in"), data: z.object({ browser: z.string().optional() }) }),
   z.object({ type: z.literal("sign-in-failed"), data: z.object({ email: z.string().optional() }) }),
   z.object({ type: z.literal("sign-out"), data: z.object({}) }),
   z.object({ type: z.literal("password-reset-asked"), data: z.object({}) }),
   z.object({ type: z.literal("password-changed"), data: z.object({}) }),
   z.object({ type: z.literal("team-made"), data: z.object({ name: z.string() }) }),
+  z.object({ type: z.literal("team-renamed"), data: z.object({ before: z.string(), after: z.string() }) }),
+  z.object({ type: z.literal("team-deleted"), data: z.object({ name: z.string() }) }),
+  z.object({ type: z.literal("team-restored"), data: z.object({ name: z.string() }) }),
+  z.object({ type: z.literal("link-days-set"), data: z.object({ before: z.number(), after: z.number() }) }),
+  z.object({ type: z.literal("invited"), data: z.object({ email: z.string(), role: z.string() }) }),
+  z.object({ type: z.literal("invitation-withdrawn"), data: z.object({ email: z.string() }) }),
+  z.object({ type: z.literal("joined"), data: z.object({ name: z.string(), role: z.string() }) }),
+  z.object({
+    type: z.literal("role-changed"),
+    data: z.object({ name: z.string(), before: z.string(), after: z.string() }),
+  }),
+  z.object({ type: z.literal("person-removed"), data: z.object({ name: z.string(), role: z.string() }) }),
+  z.object({ type: z.literal("person-left"), data: z.object({ name: z.string(), role: z.string() }) }),
+  z.object({ type: z.literal("sessions-ended"), data: z.object({ count: z.number() }) }),
+  z.object({ type: z.literal("address-change-asked"), data: z.object({}) }),
+  z.object({ type: z.literal("address-changed"), data: z.object({}) }),
+  z.object({ type: z.literal("account-deleted"), data: z.object({}) }),
+  z.object({ type: z.literal("account-restored"), data: z.object({}) }),
   z.object({
     type: z.literal("token-made"),
     data: z.object({
@@ -89,6 +108,8 @@ export type LogbookType = LogbookEntry["type"];
 
 const NONE = "open";
 
+const withArticle = (role: string) => `${/^[aeiou]/.test(role) ? "an" : "a"} ${role}`;
+
 function answerWords(a: z.infer<typeof answers>): string {
   return `level ${a.level ?? NONE}, unit ${a.energyUnit ?? NONE}, energy from ${a.energyFrom ?? NONE}`;
 }
@@ -119,6 +140,42 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: "Changed the password", detail: null };
     case "team-made":
       return { text: `Made the team ${entry.data.name}`, detail: null };
+    case "team-renamed":
+      return { text: `Renamed the team to ${entry.data.after}`, detail: `before: ${entry.data.before}` };
+    case "team-deleted":
+      return { text: `Deleted the team ${entry.data.name}`, detail: "It can be brought back for 30 days." };
+    case "team-restored":
+      return { text: `Brought the team ${entry.data.name} back`, detail: null };
+    case "link-days-set":
+      return {
+        text: `Set the longest life of a link to ${plural(entry.data.after, "day")}`,
+        detail: `before: ${plural(entry.data.before, "day")}`,
+      };
+    case "invited":
+      return { text: `Invited ${entry.data.email} as ${entry.data.role}`, detail: null };
+    case "invitation-withdrawn":
+      return { text: `Withdrew the invitation of ${entry.data.email}`, detail: null };
+    case "joined":
+      return { text: `${entry.data.name} joined the team as ${entry.data.role}`, detail: null };
+    case "role-changed":
+      return {
+        text: `Made ${entry.data.name} ${withArticle(entry.data.after)}`,
+        detail: `before: ${entry.data.before}`,
+      };
+    case "person-removed":
+      return { text: `Removed ${entry.data.name} from the team`, detail: `before: ${entry.data.role}` };
+    case "person-left":
+      return { text: "Left the team", detail: `before: ${entry.data.role}` };
+    case "sessions-ended":
+      return { text: `Ended ${plural(entry.data.count, "session")}`, detail: null };
+    case "address-change-asked":
+      return { text: "Asked for another address", detail: null };
+    case "address-changed":
+      return { text: "Changed the address", detail: null };
+    case "account-deleted":
+      return { text: "Deleted the account", detail: "It can be brought back for 30 days." };
+    case "account-restored":
+      return { text: "Brought the account back", detail: null };
     case "token-made": {
       const end = entry.data.endsAt === null ? "no end date" : `ends ${entry.data.endsAt.slice(0, 10)}`;
       return {

@@ -1,7 +1,7 @@
-import { and, eq, isNull, sql } from "drizzle-orm";
+import { and, eq, isNotNull, isNull, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { isId } from "../../db/new-id.server.ts";
-import { ensembles, members, sifts, users } from "../../db/schema.server.ts";
+import { ensembles, members, sifts, teams, users } from "../../db/schema.server.ts";
 import type { DomainError } from "../../lib/errors.ts";
 import { forbidden, notFound } from "../http.server.ts";
 
@@ -87,8 +87,9 @@ async function roleIn(actor: Actor, teamId: string): Promise<MemberRole | null> 
   const rows = await db
     .select({ role: members.role })
     .from(members)
-    .innerJoin(users, eq(users.id, members.userId))
-    .where(and(eq(members.teamId, teamId), eq(members.userId, actor.userId), isNull(users.disabledAt)))
+    .innerJoin(users, and(eq(users.id, members.userId), isNull(users.disabledAt)))
+    .innerJoin(teams, and(eq(teams.id, members.teamId), isNull(teams.deletedAt)))
+    .where(and(eq(members.teamId, teamId), eq(members.userId, actor.userId)))
     .limit(1);
   return rows[0]?.role ?? null;
 }
@@ -125,6 +126,24 @@ export async function accessTeam(actor: Actor, verb: Verb, teamId: string): Prom
   const asked = actor.kind === "token" && actor.scope === "add" && verb === "compute" ? "take-in" : verb;
   if (!may(actor, role, asked)) throw refusal(actor, verb);
   return grantOf(actor, teamId, role);
+}
+
+/**
+ * Decides on bringing a deleted team back: its owners may, for everybody else there is nothing here.
+ *
+ * @throws DomainError not-found
+ */
+export async function accessDeletedTeam(actor: Actor, teamId: string): Promise<Grant> {
+  if (actor.kind !== "user" || !isId(teamId)) throw notFound();
+  const rows = await db
+    .select({ role: members.role })
+    .from(members)
+    .innerJoin(users, and(eq(users.id, members.userId), isNull(users.disabledAt)))
+    .innerJoin(teams, and(eq(teams.id, members.teamId), isNotNull(teams.deletedAt)))
+    .where(and(eq(members.teamId, teamId), eq(members.userId, actor.userId), eq(members.role, "owner")))
+    .limit(1);
+  if (rows.length === 0) throw notFound();
+  return grantOf(actor, teamId, "owner");
 }
 
 interface Found {
@@ -164,7 +183,12 @@ function decide(actor: Actor, verb: Verb, found: Found | undefined): Grant & { e
 }
 
 async function findEnsemble(actor: Actor, ensembleId: string): Promise<Found | undefined> {
-  const living = and(eq(ensembles.id, ensembleId), isNull(ensembles.deletedAt));
+  const living = and(
+    eq(ensembles.id, ensembleId),
+    isNull(ensembles.deletedAt),
+    // A deleted team takes its work along, the live example too.
+    sql`exists (select 1 from ${teams} where ${teams.id} = ${ensembles.teamId} and ${teams.deletedAt} is null)`,
+  );
   const query = db.select(foundFields(actor)).from(ensembles).$dynamic();
   const joined = actor.kind === "anonymous" ? query : query.leftJoin(members, membership(actor));
   return (await joined.where(living).limit(1))[0];
