@@ -709,7 +709,11 @@ export const logbook = mysqlTable(
     origin: varchar({ length: 64 }),
     createdAt: timeColumn().notNull(),
   },
-  (t) => [index("logbook_team").on(t.teamId, t.id), index("logbook_ensemble").on(t.ensembleId, t.id)],
+  (t) => [
+    index("logbook_team").on(t.teamId, t.id),
+    index("logbook_ensemble").on(t.ensembleId, t.id),
+    index("logbook_user").on(t.userId, t.type),
+  ],
 );
 
 /** Messages to send; the queue retries, a failure never fails the act that made it. */

@@ -1,0 +1,1 @@
+CREATE INDEX `logbook_user` ON `logbook` (`user_id`,`type`);
