@@ -638,6 +638,23 @@ export const editions = mysqlTable(
   ],
 );
 
+/**
+ * The files handed out with an edition, as they were when it was frozen: deflated pieces of about 1 MB. Triggers refuse
+ * update and delete; they go with their edition.
+ */
+export const editionFiles = mysqlTable(
+  "edition_files",
+  {
+    editionId: idColumn()
+      .notNull()
+      .references(() => editions.id, { onDelete: "cascade" }),
+    name: varchar({ length: 60 }).notNull(),
+    position: int().notNull(),
+    data: bytesColumn().notNull(),
+  },
+  (t) => [primaryKey({ columns: [t.editionId, t.name, t.position] })],
+);
+
 /** Runs of "recompute and verify": newest last. */
 export const verifications = mysqlTable(
   "verifications",
