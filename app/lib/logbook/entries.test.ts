@@ -74,6 +74,32 @@ const WRITTEN: [LogbookEntry, string, string | null][] = [
     "Made token lowl_b41e…",
     "Night; add; ends 2027-01-31",
   ],
+  [
+    {
+      type: "columns-added",
+      data: {
+        from: "dft.csv",
+        sha256: "00",
+        columns: [
+          { id: "a", name: "DFT", kind: "energy", unit: "hartree", count: 6, replaced: false },
+          { id: "b", name: "n", kind: "property", unit: null, count: 5, replaced: false },
+        ],
+        matched: "6 of 6 rows matched by frame number",
+        answers: {},
+      },
+    },
+    "Added DFT [hartree], n",
+    "from dft.csv; 6 of 6 rows matched by frame number",
+  ],
+  [
+    {
+      type: "column-changed",
+      data: { id: "a", name: "DFT", changes: [{ what: "kind", before: "electronic", after: "free" }] },
+    },
+    "Changed the column DFT",
+    "kind: free (before: electronic)",
+  ],
+  [{ type: "column-removed", data: { id: "a", name: "DFT" } }, "Removed the column DFT", null],
   [{ type: "renamed", data: { before: "A", after: "B" } }, "Renamed to B", "before: A"],
   [{ type: "export", data: { siftId: "a", format: "xyz" } }, "Took the distinct set as XYZ", null],
   [{ type: "sign-in", data: {} }, "Signed in", null],

@@ -94,6 +94,39 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
     type: z.literal("source-downloaded"),
     data: z.object({ file: z.string() }),
   }),
+  z.object({
+    type: z.literal("columns-added"),
+    data: z.object({
+      /** File that they came from, or what they were computed from. */
+      from: z.string(),
+      sha256: z.string().nullable(),
+      columns: z.array(
+        z.object({
+          id: z.string(),
+          name: z.string(),
+          kind: z.enum(["energy", "property"]),
+          unit: z.string().nullable(),
+          count: z.number(),
+          replaced: z.boolean(),
+        }),
+      ),
+      /** How rows or frames were matched, in words. */
+      matched: z.string(),
+      answers: z.record(z.string(), z.string()),
+    }),
+  }),
+  z.object({
+    type: z.literal("column-changed"),
+    data: z.object({
+      id: z.string(),
+      name: z.string(),
+      changes: z.array(
+        z.object({ what: z.string(), before: z.string().nullable(), after: z.string().nullable() }),
+      ),
+    }),
+  }),
+  z.object({ type: z.literal("column-removed"), data: z.object({ id: z.string(), name: z.string() }) }),
+  z.object({ type: z.literal("column-restored"), data: z.object({ id: z.string(), name: z.string() }) }),
   z.object({ type: z.literal("renamed"), data: z.object({ before: z.string(), after: z.string() }) }),
   z.object({
     type: z.literal("moved"),
@@ -219,6 +252,25 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: `Took the distinct set as ${entry.data.format.toUpperCase()}`, detail: null };
     case "source-downloaded":
       return { text: `Downloaded the source file ${entry.data.file}`, detail: null };
+    case "columns-added": {
+      const names = entry.data.columns.map(({ name, unit }) => (unit === null ? name : `${name} [${unit}]`));
+      const verb = entry.data.columns.some(({ replaced }) => replaced) ? "Replaced numbers of" : "Added";
+      return {
+        text: `${verb} ${names.join(", ")}`,
+        detail: `from ${entry.data.from}; ${entry.data.matched}`,
+      };
+    }
+    case "column-changed":
+      return {
+        text: `Changed the column ${entry.data.name}`,
+        detail: entry.data.changes
+          .map(({ what, before, after }) => `${what}: ${after ?? "none"} (before: ${before ?? "none"})`)
+          .join("; "),
+      };
+    case "column-removed":
+      return { text: `Removed the column ${entry.data.name}`, detail: null };
+    case "column-restored":
+      return { text: `Brought the column ${entry.data.name} back`, detail: null };
     case "renamed":
       return { text: `Renamed to ${entry.data.after}`, detail: `before: ${entry.data.before}` };
     case "moved":

@@ -17,6 +17,17 @@ export interface FoundColumn {
   temperature: number | null;
   unit: string | null;
   dataSha: Buffer;
+  /** False while an energy is only taken as electronic because nobody said. */
+  kindStated: boolean;
+  geometryLevel: string | null;
+  solvent: string | null;
+  /** Of a property: linear, r-6, r-3 or circular. */
+  rule: string | null;
+  /** Per-atom properties: what they share, and the atom from 1. */
+  quantity: string | null;
+  atom: number | null;
+  origin: string | null;
+  definition: (typeof columns.$inferSelect)["definition"];
   /** Accepted frames with and without a value. */
   count: number;
   missing: number;
@@ -38,6 +49,14 @@ export async function findColumns(ensembleId: string, strip: string): Promise<Fo
       temperature: columns.temperature,
       unit: columns.unit,
       dataSha: columns.dataSha,
+      kindStated: columns.kindStated,
+      geometryLevel: columns.geometryLevel,
+      solvent: columns.solvent,
+      rule: columns.rule,
+      quantity: columns.quantity,
+      atom: columns.atom,
+      origin: columns.origin,
+      definition: columns.definition,
       // Only the presence bits behind the doubles.
       bits: sql<Buffer>`substring(${columns.data}, ${8 * strip.length + 1})`,
     })
