@@ -126,7 +126,8 @@ function yardstick(lines: readonly string[]): string[] {
       break;
     }
     if (k < at + 2 + n) {
-      at = held("X08", at, find(k, whole));
+      const code = n > 0 && lines.slice(k).every((line) => line === "") ? "X09" : "X08";
+      at = held(code, at, find(k, whole));
       continue;
     }
     let next = k;
@@ -171,6 +172,61 @@ test("broken ranges end where the page says, for any order of lines", () => {
     { seed: 43, numRuns: 8000 },
   );
 }, 60_000);
+
+test("what is odd about a comment is one message a frame", () => {
+  const { frames } = read(frame(`Properties=species:S:1:pos:R:3 converged name='a b' x=1 x=2 final`));
+  expect(frames[0]?.remarks).toMatchObject([
+    {
+      code: "X33",
+      line: 2,
+      found: "converged, name, x",
+      message:
+        "A key stands without a value and is read as true; a value in single quotes is read as text; a key stands twice, and the last one counts.",
+    },
+  ]);
+});
+
+describe("a file that is cut", () => {
+  const whole = frame("a") + frame("b");
+
+  test("anywhere inside of its last frame says so, whatever the last line still holds", () => {
+    const from = frame("a").length + "3\nb\n".length;
+    // The last number may lose digits and stay a number: nobody can tell.
+    const to = whole.length - "0.4692\n".length;
+    for (let end = from; end < to; end++) {
+      const { frames } = read(whole.slice(0, end));
+      expect(
+        frames.map(({ problem }) => problem?.code ?? "sound"),
+        JSON.stringify(whole.slice(0, end)),
+      ).toEqual(["sound", "X09"]);
+    }
+  });
+
+  test("names the line that it ends in, and counts whole atoms only", () => {
+    const { frames } = read(whole.slice(0, -10));
+    expect(frames[1]?.problem).toMatchObject({
+      code: "X09",
+      frame: 2,
+      line: 10,
+      found: "H 0.0000 -0.757",
+      message: "Frame 2 has 2 of its 3 atoms; then the file ends in the middle of a line.",
+    });
+  });
+
+  test("between two lines is named by the count line, blank lines behind or not", () => {
+    for (const end of ["", "\n", "\n \n\n"]) {
+      const { frames } = read(`${frame("a")}3\nb\nO 0 0 0${end}`);
+      expect(frames[1]?.problem).toMatchObject({ code: "X09", line: 6 });
+      expect(frames[1]?.problem?.message).toContain("has 1 of its 3 atoms; then the file ends.");
+    }
+  });
+
+  test("is not a file with a broken line at its end", () => {
+    const { frames } = read(`${frame("a")}3\nb\nO 0 0 0\nH 0 0 1\nH 0 0\n`);
+    expect(frames[1]?.problem?.code).toBe("X24");
+    expect(read(`${frame("a")}3\nb\nO 0 0 0\nwords of their own\n`).frames[1]?.problem?.code).toBe("X08");
+  });
+});
 
 // `FUZZ_RUNS=100000 npx vitest run app/lib/xyz.server.test.ts` for the long run.
 const RUNS = Number(process.env.FUZZ_RUNS ?? 2000);

@@ -77,6 +77,10 @@ export class XyzReader {
   /** Where a broken range begins and why. */
   #broken: { builder: FrameBuilder; fault: BuilderFault } | null = null;
   #search: RestartSearch | null = null;
+  /** Nothing but blank lines came since the broken range began: the file may simply end there. */
+  #onlyBlank = false;
+  /** The line taken last: where the file ends in its middle, it is no line. */
+  #last: TextLine | null = null;
   #note: { line: number; text: string } | null = null;
   #blank = 0;
   #anyCountNote = false;
@@ -157,6 +161,7 @@ export class XyzReader {
   }
 
   #take(line: TextLine): void {
+    this.#last = line;
     switch (this.#mode) {
       case "count":
         this.#takeBetween(line);
@@ -258,6 +263,7 @@ export class XyzReader {
 
   #breakOff(builder: FrameBuilder, line: TextLine): void {
     this.#startBroken(builder, brokenOff(builder, line, this.#number()));
+    this.#onlyBlank = true;
     this.#takeSearching(line);
   }
 
@@ -270,6 +276,7 @@ export class XyzReader {
   #startBroken(builder: FrameBuilder, fault: BuilderFault): void {
     this.#broken = { builder, fault };
     this.#builder = null;
+    this.#onlyBlank = false;
     this.#mode = "broken";
     this.#search = new RestartSearch({
       maxAtoms: this.#limits.atoms,
@@ -295,6 +302,7 @@ export class XyzReader {
   }
 
   #takeSearching(line: TextLine): void {
+    if (line.text.trim() !== "") this.#onlyBlank = false;
     const found = this.#search!.take(line);
     if (this.#note && this.#note.text.length < NOTE_LENGTH) {
       this.#note.text += `${line.text.slice(0, NOTE_LENGTH)}\n`;
@@ -367,7 +375,32 @@ export class XyzReader {
     return this.#elements;
   }
 
+  /**
+   * The fault of a frame that the file ends inside of: one on its last line is the end of the file, too.
+   *
+   * @param inLine the last line is no whole atom line
+   */
+  #cutOff(builder: FrameBuilder, inLine: boolean): BuilderFault | null {
+    const last = inLine ? this.#last : null;
+    const fault = cutOff(builder, this.#number(), last);
+    if (fault && last && builder.fault?.line === last.number) builder.fault = null;
+    return fault;
+  }
+
+  /** What looks broken only because the file ends there is cut off (row X09). */
+  #blameEnd(): void {
+    const atEnd = (line: number | undefined) => this.#lines.open && line === this.#last?.number;
+    const broken = this.#broken;
+    if (broken?.fault.code === "X08" && (this.#onlyBlank || atEnd(broken.fault.line))) {
+      const fault = this.#cutOff(broken.builder, !this.#onlyBlank);
+      if (fault) this.#broken = { builder: broken.builder, fault };
+    }
+    const waiting = this.#waiting;
+    if (waiting?.fault && atEnd(waiting.fault.line)) waiting.fault = this.#cutOff(waiting, true);
+  }
+
   #finish(): void {
+    this.#blameEnd();
     const next = this.#lines.line + 1;
     const found = this.#mode === "broken" ? this.#search?.end() : null;
     if (found) {
@@ -379,7 +412,7 @@ export class XyzReader {
     this.#flush(next);
     const cut = this.#builder;
     if (cut) {
-      const fault = cutOff(cut, this.#number());
+      const fault = this.#cutOff(cut, cut.fault?.line === this.#last?.number);
       this.#emit(cut, { lineCount: next - cut.line, fault, noteLines: null });
     }
     if (this.frames === 0) refuseEmpty(this.#file);

@@ -31,6 +31,8 @@ export class LineBuffer {
   line = 0;
   /** True while the line at `at` is known to have no end yet. */
   unfinished = false;
+  /** True once the last line was taken and had no end. */
+  open = false;
 
   readonly #file: string;
   #scanned = 0;
@@ -81,6 +83,7 @@ export class LineBuffer {
     this.#checkLength(k);
     if (!this.#closed || this.at >= end) return false;
     this.#take(end, end);
+    this.open = true;
     return true;
   }
 

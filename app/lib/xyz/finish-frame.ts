@@ -188,10 +188,18 @@ function countRemarks(builder: FrameBuilder): Remark[] {
 }
 
 const ODDITY_WORDS = {
-  "bare-key": "A key stands without a value and is read as true.",
-  "single-quotes": "A value in single quotes is read as text.",
-  "key-twice": "A key stands twice; the last one counts.",
+  "bare-key": "a key stands without a value and is read as true",
+  "single-quotes": "a value in single quotes is read as text",
+  "key-twice": "a key stands twice, and the last one counts",
 } as const;
+
+/** Everything odd about the keys of a comment, as one message. */
+function oddityRemarks({ oddities }: FrameBuilder, line: number): Remark[] {
+  if (oddities.size === 0) return [];
+  const words = [...oddities.keys()].map((oddity) => ODDITY_WORDS[oddity]).join("; ");
+  const found = quoteFound([...new Set(oddities.values())].join(", "));
+  return [{ code: "X33", line, message: `${words.charAt(0).toUpperCase()}${words.slice(1)}.`, found }];
+}
 
 function commentRemarks(builder: FrameBuilder, label: string | null, cell: Cell | null): Remark[] {
   const line = builder.line + 1;
@@ -200,9 +208,7 @@ function commentRemarks(builder: FrameBuilder, label: string | null, cell: Cell 
     const message = `Line ${line} looks like an atom. Is the comment line missing?`;
     remarks.push({ code: "X06", line, message, found: quoteFound(builder.comment ?? "") });
   }
-  for (const [oddity, key] of builder.oddities) {
-    remarks.push({ code: "X33", line, message: ODDITY_WORDS[oddity], found: quoteFound(key) });
-  }
+  remarks.push(...oddityRemarks(builder, line));
   const steering = [label, ...(builder.labels ?? [])].find(
     (text) => text != null && hasSteeringCharacters(text),
   );

@@ -31,14 +31,22 @@ export function surplus(builder: FrameBuilder, line: number, number: number): Bu
   };
 }
 
-/** The file ends inside of the frame; null where the frame had nothing to lose (row X04 says so). */
-export function cutOff(builder: FrameBuilder, number: number): BuilderFault | null {
+/**
+ * The file ends inside of the frame; null where the frame had nothing to lose (row X04 says so).
+ *
+ * @param cutLine the last line, where the file ends in the middle of it: it counts as no atom
+ */
+export function cutOff(builder: FrameBuilder, number: number, cutLine: TextLine | null): BuilderFault | null {
   if (builder.count === 0) return null;
+  const counted = cutLine !== null && builder.fault?.line === cutLine.number;
+  const whole = builder.read - Number(counted);
+  const end = cutLine === null ? "the file ends" : "the file ends in the middle of a line";
   return {
     code: "X09",
     reason: "unreadable",
-    line: builder.line,
-    message: `Frame ${number} has ${builder.read} of its ${builder.count} atoms; then the file ends.`,
+    line: cutLine?.number ?? builder.line,
+    message: `Frame ${number} has ${whole} of its ${builder.count} atoms; then ${end}.`,
     hint: "The file was cut: copy it again, or leave the frame held.",
+    ...(cutLine === null ? {} : { found: cutLine.text.trim() }),
   };
 }
