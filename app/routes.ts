@@ -30,6 +30,7 @@ export default [
 
   route("files/upload", "routes/files/upload.ts"),
   route("files/ensembles/:id/coordinates", "routes/files/coordinates.ts"),
+  route("files/ensembles/:id/accepted", "routes/files/accepted.ts"),
   route("files/ensembles/:id/sources/:position", "routes/files/source.ts"),
   route("files/ensembles/:id/sifts", "routes/files/new-sift.ts"),
   route("files/sifts/:id", "routes/files/sift.ts"),
