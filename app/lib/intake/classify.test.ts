@@ -57,12 +57,13 @@ describe("an ensemble of one molecule", () => {
     const [water, methane] = [molecule("O"), molecule("C")];
     const classifier = new FrameClassifier();
     const places = [water, methane, water, water].map((m, k) => classifier.add(frameOf(m, k + 1)));
-    expect(places).toEqual([
-      { shape: 0, indexInShape: 0 },
-      { shape: 1, indexInShape: 0 },
-      { shape: 0, indexInShape: 1 },
-      { shape: 0, indexInShape: 2 },
+    expect(places.map(({ shape, indexInShape }) => [shape, indexInShape])).toEqual([
+      [0, 0],
+      [1, 0],
+      [0, 1],
+      [0, 2],
     ]);
+    expect(places.every(({ mapping }) => mapping === null)).toBe(true);
   });
 
   it("has no group without frames, or when none can be used", () => {
@@ -158,6 +159,24 @@ describe("X13: another order of atoms", () => {
     );
   });
 
+  it("is that too where two equal hydrogens of different carbons stand in each other's place", () => {
+    const order = [...Array(9).keys()];
+    const { graph } = ethanol;
+    const hydrogenOf = (carbon: number) =>
+      graph.neighbours
+        .subarray(graph.offsets[carbon]!, graph.offsets[carbon + 1]!)
+        .find((a) => graph.elements[a] === 1)!;
+    const carbons = order.filter((a) => graph.elements[a] === 6);
+    const [a, b] = [hydrogenOf(carbons[0]!), hydrogenOf(carbons[1]!)];
+    order[a] = b;
+    order[b] = a;
+    const result = classifyMolecules([ethanol, ethanol, renamed(ethanol, order)]);
+    expect(result.frames[2]!.reason).toBe("other-order");
+    expect(saying(result, 3)).toMatch(
+      /^X13 hold: The same molecule with its atoms in another order: H\d has moved .* equal atoms are exchanged\.$/,
+    );
+  });
+
   it("is another species where the bonds differ too", () => {
     const ether = molecule("COC");
     const result = classifyMolecules([ethanol, ethanol, ether]);
@@ -202,11 +221,11 @@ describe("X38: another species", () => {
     );
   });
 
-  it("the same molecule with a hydrogen at the other oxygen says so", () => {
+  it("the same molecule with a hydrogen at the other oxygen is no other species: X13 says what moved", () => {
     const carbonyl = 7;
     const other = placedBehind(glycine, acidH, acid, carbonyl, 0.98);
     expect(saying(classifyMolecules([glycine, glycine, other]), 3)).toBe(
-      "X38 hold: Another species (proton transfer): H10 has moved from O9 to O8. It is the same molecule with equal atoms exchanged.",
+      "X13 hold: The same molecule with its atoms in another order: H10 has moved from O9 to O8, and equal atoms are exchanged.",
     );
   });
 

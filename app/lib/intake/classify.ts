@@ -1,11 +1,13 @@
 import { perceiveChirality } from "../chem/chirality.ts";
 import { hillFormula } from "../chem/formula.ts";
 import type { Configuration } from "../chem/stereo.ts";
+import { type StatedOrders, statedOrders } from "../sdf/orders.ts";
 import { type Graph, makeGraph } from "../structure.ts";
 import { CopyFinder } from "./copies.ts";
 import { FrameKinds } from "./frame-kinds.ts";
 import type { ClassifierFrame, FrameRecord, FrameVerdict, MoleculeGroup } from "./frame-record.ts";
 import { FrameJudge } from "./judge.ts";
+import { OrderMapper } from "./order-mapper.ts";
 import type { IntakeMessage } from "./report.ts";
 import { chooseGroup } from "./vote.ts";
 
@@ -24,6 +26,19 @@ export interface Classification {
   chiralityNote: string;
   /** On the ensemble as a whole: fragments, distances that are contested throughout. */
   messages: IntakeMessage[];
+  /** Orders of the group's bonds, with charges and radicals, as the files state them; null where they do not. */
+  table: Required<StatedOrders> | null;
+}
+
+/** Where a frame's coordinates belong, and in which order of atoms. */
+export interface FramePlacing {
+  /** Number of its sequence of elements and isotopes, from 0 in order of appearance. */
+  shape: number;
+  indexInShape: number;
+  /** Å: the frame's own, or those of the group's order of atoms. */
+  positions: Float64Array;
+  /** Which atom of the frame stands at each place; null where it keeps its order. */
+  mapping: Int32Array | null;
 }
 
 /**
@@ -32,7 +47,8 @@ export interface Classification {
  *
  * The ensemble is the largest composition (with its charge), in it the most frequent order of atoms, set of bonds and
  * configuration; ties go to the earliest frame. Frames that differ are held with the difference in words: rows X12,
- * X13, X28, X29, X37 to X40 of the formats, and two of our own: X41 a contested distance, X42 an exact copy.
+ * X13, X28, X29, X37 to X40 and S22 of the formats, and three of our own: X41 a contested distance, X42 an exact copy,
+ * S26 a bond table that the distances do not bear out.
  *
  * @example
  * const classifier = new FrameClassifier();
@@ -45,24 +61,36 @@ export class FrameClassifier {
   private readonly copies = new CopyFinder();
   private readonly records: FrameRecord[] = [];
   private readonly given: MoleculeGroup | null;
+  private readonly mapper: OrderMapper | null;
+  private readonly givenTable: StatedOrders | null;
 
-  constructor(options: { group?: MoleculeGroup | null } = {}) {
-    this.given = options.group ?? null;
+  /**
+   * @param options.group what a further batch is compared with
+   * @param options.map frames of the group's molecule in another order of atoms are put into its order
+   */
+  constructor(options: { group?: MoleculeGroup | null; map?: boolean } = {}) {
+    const group = options.group ?? null;
+    this.given = group;
+    this.mapper = group && options.map ? new OrderMapper(graphOf(group)) : null;
+    this.givenTable = group && {
+      bonds: Int32Array.from(group.bonds),
+      orders: null,
+      charges: null,
+      radicals: null,
+    };
   }
 
   /**
    * Takes in the next frame.
    *
-   * @returns a number for its sequence of elements and isotopes, from 0 in order of appearance, and the frame's index
-   *   among those of the same sequence: the place for its coordinates
    * @throws RangeError on a frame without atoms, or with another number of coordinates than atoms
    */
-  add(frame: ClassifierFrame): { shape: number; indexInShape: number } {
+  add(frame: ClassifierFrame): FramePlacing {
     const atoms = frame.elements.length;
     if (atoms === 0 || frame.positions.length !== 3 * atoms) {
       throw new RangeError(`Frame ${frame.frame}: ${frame.positions.length} coordinates for ${atoms} atoms.`);
     }
-    const trace = this.kinds.trace(frame.elements, frame.isotopes, frame.positions);
+    const { trace, positions, mapping } = this.trace(frame);
     const energy = frame.energy ?? null;
     const { shape, kind, hands, near, closest, allZero, drawing } = trace;
     this.records.push({
@@ -78,10 +106,26 @@ export class FrameClassifier {
       line: frame.line,
       charge: frame.charge ?? null,
       multiplicity: frame.multiplicity ?? null,
-      copyOf: this.copies.find(frame.frame, trace.shape.id, frame.positions, energy),
+      copyOf: this.copies.find(frame.frame, trace.shape.id, positions, energy),
+      mapping,
       withEnergy: energy !== null,
     });
-    return { shape: trace.shape.id, indexInShape: trace.shape.frames - 1 };
+    return { shape: trace.shape.id, indexInShape: trace.shape.frames - 1, positions, mapping };
+  }
+
+  private trace(frame: ClassifierFrame) {
+    const { elements, isotopes, positions } = frame;
+    const table = frame.table ?? null;
+    // A further batch without a table is read with the one that the ensemble has.
+    const withSeen = table === null && this.given?.seen !== undefined && sameElements(elements, this.given);
+    const trace = this.kinds.trace(elements, isotopes, positions, withSeen ? this.givenTable : table);
+    const mapping = trace.kind && this.mapper ? this.mapper.mapping(trace.kind) : null;
+    if (mapping === null || this.mapper === null) return { trace, positions, mapping: null };
+    this.kinds.takeBack(trace);
+    const own = this.mapper.graph;
+    const moved = inOrder(positions, mapping);
+    const stated = table === null ? null : this.givenTable;
+    return { trace: this.kinds.trace(own.elements, own.isotopes, moved, stated), positions: moved, mapping };
   }
 
   /**
@@ -105,8 +149,31 @@ export class FrameClassifier {
       shape: this.kinds.shapes.find((shape) => judge.hasOrder(shape))?.id ?? null,
       ...chirality(graph, group.configuration),
       messages: judge.overall(this.records[0]?.file ?? ""),
+      table: this.tableOf(graph),
     };
   }
+
+  private tableOf(graph: Graph): Required<StatedOrders> | null {
+    for (const { table } of this.kinds.shapes.flatMap((shape) => shape.kinds)) {
+      const orders = table && statedOrders(graph, table);
+      if (table && orders && this.givenTable?.bonds !== table.bonds)
+        return { ...table, bonds: graph.bonds, orders };
+    }
+    return null;
+  }
+}
+
+function sameElements(elements: Uint8Array, group: MoleculeGroup): boolean {
+  return elements.length === group.elements.length && elements.every((z, a) => z === group.elements[a]);
+}
+
+/** Coordinates with atom `mapping[a]` at place a. */
+function inOrder(positions: Float64Array, mapping: Int32Array): Float64Array {
+  const moved = new Float64Array(positions.length);
+  mapping.forEach((from, to) => {
+    moved.set(positions.subarray(3 * from, 3 * from + 3), 3 * to);
+  });
+  return moved;
 }
 
 /**
@@ -136,5 +203,6 @@ function nothing(records: readonly FrameRecord[]): Classification {
     chirality: "achiral",
     chiralityNote: "",
     messages: [],
+    table: null,
   };
 }

@@ -3,6 +3,8 @@ import { fold, type StereoUnit } from "../chem/refine.ts";
 import { fragmentsOf } from "../chem/rings.ts";
 import { unitSign } from "../chem/stereo.ts";
 import { findStereoUnits } from "../chem/stereo-units.ts";
+import { AROMATIC } from "../sdf/bond-types.ts";
+import type { StatedOrders } from "../sdf/orders.ts";
 import { type Graph, makeGraph } from "../structure.ts";
 
 /**
@@ -24,7 +26,12 @@ export interface Shape {
 /** One set of bonds of a shape. */
 export interface BondKind {
   shape: Shape;
+  /** The bonds of the file's table where there is one, else those that the distances show. */
   graph: Graph;
+  /** What the distances show, where that is not what the table says. */
+  seen: Int32Array | null;
+  /** The table of a first frame of this kind; null where the file has none. */
+  table: StatedOrders | null;
   /** Null where so many bond sets came before that hands are no longer kept (`HANDS_UP_TO`). */
   units: StereoUnit[] | null;
   /** Sums of the lengths of the units that may be double bonds, and the number of frames in them. */
@@ -36,6 +43,7 @@ export interface BondKind {
 
 /** One pattern of signs of the units of a bond kind. */
 export interface Hands {
+  kind: BondKind;
   signs: Int8Array;
 }
 
@@ -71,10 +79,19 @@ export class FrameKinds {
   private kindCount = 0;
   private last: { shape: Shape; elements: Uint8Array; isotopes: Uint16Array | null } | null = null;
   private lastKind: BondKind | null = null;
+  private lastTable: StatedOrders["bonds"] | null = null;
   private scratch = new Int8Array(0);
 
-  /** @param positions Å, packed; read during the call only */
-  trace(elements: Uint8Array, isotopes: Uint16Array | null, positions: Float64Array): FrameTrace {
+  /**
+   * @param positions Å, packed; read during the call only
+   * @param table bonds as the file states them; kept
+   */
+  trace(
+    elements: Uint8Array,
+    isotopes: Uint16Array | null,
+    positions: Float64Array,
+    table: StatedOrders | null = null,
+  ): FrameTrace {
     const shape = this.shapeOf(elements, isotopes);
     shape.frames += 1;
     const finder = this.finderOf(shape);
@@ -93,7 +110,7 @@ export class FrameKinds {
       trace.allZero = positions.every((x) => x === 0);
       return trace;
     }
-    const kind = this.kindOf(shape, finder);
+    const kind = this.kindOf(shape, finder, table);
     trace.kind = kind;
     trace.hands = this.handsOf(kind, positions);
     trace.near = nearPairs(finder);
@@ -133,27 +150,38 @@ export class FrameKinds {
     return finder;
   }
 
-  private kindOf(shape: Shape, finder: BondFinder): BondKind {
+  /** Takes back a frame that is to be traced again in another order of its atoms. */
+  takeBack(trace: FrameTrace): void {
+    trace.shape.frames -= 1;
+  }
+
+  private kindOf(shape: Shape, finder: BondFinder, table: StatedOrders | null): BondKind {
     const { bonds, bondCount } = finder;
-    const fits = (kind: BondKind): boolean => {
-      const own = kind.graph.bonds;
-      if (kind.shape !== shape || own.length !== 2 * bondCount) return false;
-      for (let k = 0; k < own.length; k++) if (own[k] !== bonds[k]) return false;
-      return true;
-    };
-    if (this.lastKind && fits(this.lastKind)) return this.lastKind;
+    const last = this.lastKind;
+    const sameTable = (table?.bonds ?? null) === this.lastTable;
+    if (last && sameTable && last.shape === shape && sameBonds(seenBonds(last), bonds, bondCount)) {
+      return withTable(last, table);
+    }
+    const own = table === null ? bonds.slice(0, 2 * bondCount) : tableBonds(table, bonds, bondCount);
+    const fits = (kind: BondKind): boolean =>
+      kind.shape === shape &&
+      (kind.table === null) === (table === null) &&
+      sameBonds(seenBonds(kind), bonds, bondCount) &&
+      sameBonds(kind.graph.bonds, own, own.length / 2);
     let hash = fold(19, shape.id);
     for (let k = 0; k < 2 * bondCount; k++) hash = fold(hash, bonds[k]!);
     const sameHash = this.kindsByHash.get(hash) ?? [];
     let kind = sameHash.find(fits);
     if (!kind) {
-      kind = newKind(shape, bonds.slice(0, 2 * bondCount), this.kindCount < HANDS_UP_TO);
+      kind = newKind(shape, own, this.kindCount < HANDS_UP_TO);
+      if (!sameBonds(own, bonds, bondCount)) kind.seen = bonds.slice(0, 2 * bondCount);
       this.kindCount += 1;
       this.kindsByHash.set(hash, [...sameHash, kind]);
       shape.kinds.push(kind);
     }
     this.lastKind = kind;
-    return kind;
+    this.lastTable = table?.bonds ?? null;
+    return withTable(kind, table);
   }
 
   private handsOf(kind: BondKind, positions: Float64Array): Hands | null {
@@ -173,12 +201,46 @@ export class FrameKinds {
     const key = own.join("");
     let hands = kind.handsByKey.get(key);
     if (!hands) {
-      hands = { signs: own };
+      hands = { kind, signs: own };
       kind.hands.push(hands);
       kind.handsByKey.set(key, hands);
     }
     return hands;
   }
+}
+
+/** Bonds of a kind as the distances show them. */
+export function seenBonds(kind: BondKind): Int32Array {
+  return kind.seen ?? kind.graph.bonds;
+}
+
+/** Whether a list of pairs is the first `count` pairs of another. */
+export function sameBonds(own: ArrayLike<number>, bonds: ArrayLike<number>, count: number): boolean {
+  if (own.length !== 2 * count) return false;
+  for (let k = 0; k < own.length; k++) if (own[k] !== bonds[k]) return false;
+  return true;
+}
+
+/** The first table that states orders stands for all of a kind. */
+function withTable(kind: BondKind, table: StatedOrders | null): BondKind {
+  if (table !== null && (kind.table === null || (kind.table.orders === null && table.orders !== null))) {
+    kind.table = table;
+  }
+  return kind;
+}
+
+/** A table's bonds; what it calls coordination or hydrogen bonds only where the distances show them too. */
+function tableBonds(table: StatedOrders, seen: Int32Array, count: number): Int32Array {
+  const { bonds, orders } = table;
+  if (orders === null) return Int32Array.from(bonds);
+  const shown = new Set<string>();
+  for (let k = 0; k < count; k++) shown.add(`${seen[2 * k]} ${seen[2 * k + 1]}`);
+  const kept: number[] = [];
+  for (let k = 0; k < orders.length; k++) {
+    const [i, j] = [bonds[2 * k]!, bonds[2 * k + 1]!];
+    if (orders[k]! <= AROMATIC || shown.has(`${i} ${j}`)) kept.push(i, j);
+  }
+  return Int32Array.from(kept);
 }
 
 function newKind(shape: Shape, bonds: Int32Array, withHands: boolean): BondKind {
@@ -187,6 +249,8 @@ function newKind(shape: Shape, bonds: Int32Array, withHands: boolean): BondKind 
   return {
     shape,
     graph,
+    seen: null,
+    table: null,
     units,
     lengths: new Float64Array(units?.length ?? 0),
     counted: 0,

@@ -1,4 +1,5 @@
 import type { Configuration } from "../chem/stereo.ts";
+import type { StatedOrders } from "../sdf/orders.ts";
 import type { FrameTrace } from "./frame-kinds.ts";
 import type { FrameState, HoldReason, IntakeMessage } from "./report.ts";
 
@@ -19,6 +20,8 @@ export interface ClassifierFrame {
   multiplicity?: number | null;
   /** The frame's energy as written (or the whole comment line): copies have to agree in it too. */
   energy?: string | null;
+  /** Bonds as the file states them; they count, and the distances only have to agree. Kept, not copied. */
+  table?: StatedOrders | null;
 }
 
 /** What the frames of an ensemble have in common. Plain JSON, so that a later batch is compared with the same. */
@@ -26,8 +29,10 @@ export interface MoleculeGroup {
   elements: number[];
   /** Mass numbers, 0 where none is given. */
   isotopes: number[];
-  /** Flat pairs i < j, sorted. */
+  /** Flat pairs i < j, sorted: of the file's bond table, else as the distances show them. */
   bonds: number[];
+  /** What the distances show, where that is not what the file's bond table says. */
+  seen?: number[];
   charge: number | null;
   multiplicity: number | null;
   configuration: Configuration;
@@ -50,5 +55,7 @@ export interface FrameRecord extends FrameTrace {
   charge: number | null;
   multiplicity: number | null;
   copyOf: number | null;
+  /** Which atom of the file stands at each place, where the frame was put into the group's order. */
+  mapping: Int32Array | null;
   withEnergy: boolean;
 }

@@ -3,10 +3,17 @@ import { hillFormula } from "../chem/formula.ts";
 import type { StereoUnit } from "../chem/refine.ts";
 import { graphSignature, isomorphism } from "../chem/signature.ts";
 import { ConfigurationComparer, fromConfiguration } from "../chem/stereo.ts";
-import type { Graph } from "../structure.ts";
+import { type Graph, makeGraph } from "../structure.ts";
 import { describeChange } from "./bond-changes.ts";
 import { configurationWords } from "./configuration-words.ts";
-import type { BondKind, Hands, NearPairs, Shape } from "./frame-kinds.ts";
+import {
+  type BondKind,
+  type Hands,
+  type NearPairs,
+  type Shape,
+  sameBonds,
+  seenBonds,
+} from "./frame-kinds.ts";
 import type { FrameRecord, FrameVerdict, MoleculeGroup } from "./frame-record.ts";
 import { type Finding, FrameRemarks } from "./remarks.ts";
 import type { IntakeMessage } from "./report.ts";
@@ -23,6 +30,8 @@ export class FrameJudge {
   private readonly signs: Int8Array;
   private readonly comparer: ConfigurationComparer;
   private readonly signature: string;
+  /** The group as the distances show it. */
+  private readonly seen: Graph;
   private readonly remarks: FrameRemarks;
   private readonly sameAtoms = new Remembered((shape: Shape) => sameComposition(shape, this.group));
   private readonly sameBonds = new Remembered((kind: BondKind) => this.hasBonds(kind));
@@ -41,6 +50,7 @@ export class FrameJudge {
     this.signs = signs;
     this.comparer = new ConfigurationComparer(graph, units);
     this.signature = graphSignature(graph);
+    this.seen = group.seen ? makeGraph(graph.elements, group.seen, graph.isotopes) : graph;
     const own = records.filter((record) => record.kind && this.sameBonds.of(record.kind));
     this.remarks = new FrameRemarks(graph, units, own);
   }
@@ -64,7 +74,16 @@ export class FrameJudge {
 
   /** Remarks on the ensemble as a whole. */
   overall(file: string): IntakeMessage[] {
-    return this.remarks.overall().map(({ code, message }) => ({ code, severity: "remark", file, message }));
+    const table = this.tableDisagrees();
+    const all = [...(table ? [table] : []), ...this.remarks.overall()];
+    return all.map(({ code, message }) => ({ code, severity: "remark", file, message }));
+  }
+
+  private tableDisagrees(): Finding | null {
+    if (this.seen === this.graph) return null;
+    const { words } = describeChange(this.graph, this.seen);
+    const message = `By the distances ${words}, in most frames; the bonds of the file's table count.`;
+    return { code: "S26", message };
   }
 
   hasOrder({ elements, isotopes }: Shape): boolean {
@@ -110,11 +129,15 @@ export class FrameJudge {
     };
   }
 
-  private hasBonds({ shape, graph }: BondKind): boolean {
-    const own = this.group.bonds;
-    return (
-      graph.bonds.length === own.length && this.hasOrder(shape) && graph.bonds.every((a, k) => a === own[k])
-    );
+  /** The bonds of the file's table, where both have one, and what the distances show. */
+  private hasBonds(kind: BondKind): boolean {
+    if (!this.hasOrder(kind.shape) || !this.looksAlike(kind)) return false;
+    if (kind.table === null || kind.seen === null) return true;
+    return sameBonds(kind.graph.bonds, this.group.bonds, this.group.bonds.length / 2);
+  }
+
+  private looksAlike(kind: BondKind): boolean {
+    return sameBonds(seenBonds(kind), this.seen.bonds, this.seen.bonds.length / 2);
   }
 
   private isSameMolecule({ graph }: BondKind): boolean {
@@ -124,37 +147,40 @@ export class FrameJudge {
   }
 
   private otherBonds(kind: BondKind, near: NearPairs | null): Finding {
-    const alike = this.sameMolecule.of(kind);
-    if (!this.hasOrder(kind.shape)) return alike ? this.otherOrder(kind) : otherIsomer;
+    // The same graph under other numbers is the same molecule, whichever bonds seem to have moved.
+    if (this.sameMolecule.of(kind)) return this.otherOrder(kind);
+    if (!this.hasOrder(kind.shape)) return otherIsomer;
     const change = describeChange(
       this.graph,
       kind.graph,
       (i, j) => near?.pairs.find((pair) => pair.i === i && pair.j === j)?.ratio ?? null,
     );
-    // A hydrogen that went from one oxygen of a carboxyl group to the other is told as that; more is another order.
-    if (alike && Math.max(change.broken, change.formed) > 2) return this.otherOrder(kind);
-    const same = alike ? " It is the same molecule with equal atoms exchanged." : "";
     return {
       code: "X38",
       reason: "other-species",
-      message: `Another species (${change.kind}): ${change.words}.${same}`,
+      message: `Another species (${change.kind}): ${change.words}.`,
       hint: OWN_ENSEMBLE,
     };
   }
 
-  private otherOrder({ shape }: BondKind): Finding {
-    const { elements } = this.group;
-    const at = shape.elements.findIndex((z, a) => z !== elements[a]);
-    const where =
-      at < 0
-        ? "elements stand in the same places, bonds do not"
-        : `atom ${at + 1} is ${symbolOf(shape.elements[at]!)}, in the ensemble ${symbolOf(elements[at]!)}`;
+  private otherOrder(kind: BondKind): Finding {
     return {
       code: "X13",
       reason: "other-order",
-      message: `The same molecule with its atoms in another order: ${where}.`,
+      message: `The same molecule with its atoms in another order: ${this.orderInWords(kind)}.`,
       hint: "Write all frames in one order of atoms and take the file in again.",
     };
+  }
+
+  private orderInWords({ shape, graph }: BondKind): string {
+    const { elements } = this.group;
+    const at = shape.elements.findIndex((z, a) => z !== elements[a]);
+    if (at >= 0) {
+      return `atom ${at + 1} is ${symbolOf(shape.elements[at]!)}, in the ensemble ${symbolOf(elements[at]!)}`;
+    }
+    const change = describeChange(this.graph, graph);
+    if (Math.max(change.broken, change.formed) > 2) return "elements stand in the same places, bonds do not";
+    return `${change.words}, and equal atoms are exchanged`;
   }
 
   private otherHands(hands: Hands): Finding | null {

@@ -5,7 +5,7 @@ import type { StereoUnit } from "../chem/refine.ts";
 import { fragmentsOf } from "../chem/rings.ts";
 import type { Graph } from "../structure.ts";
 import { undefinedWords } from "./configuration-words.ts";
-import type { Hands, NearPairs } from "./frame-kinds.ts";
+import type { BondKind, Hands, NearPairs } from "./frame-kinds.ts";
 import type { FrameRecord } from "./frame-record.ts";
 import type { HoldReason } from "./report.ts";
 
@@ -25,8 +25,8 @@ const NAMED = 3;
 export class FrameRemarks {
   /** Contested pairs of most frames, said once for all. */
   private readonly usual = new Set<number>();
-  /** Where the group's units stand among those of its bond kind, which also counts bonds that are not double. */
-  private readonly places: number[];
+  /** Where the group's units stand among those of a bond kind, which also counts bonds that are not double. */
+  private readonly places = new Map<BondKind, number[]>();
   private readonly open = new Map<Hands, Finding | null>();
 
   /** @param own records of the frames that have the group's bonds */
@@ -35,14 +35,18 @@ export class FrameRemarks {
     private readonly units: readonly StereoUnit[],
     own: readonly FrameRecord[],
   ) {
-    const all = own[0]?.kind?.units ?? [];
-    this.places = units.map((unit) => all.findIndex((other) => samePlace(unit, other)));
     this.findUsualPairs(own);
   }
 
   /** The frame's signs of the group's units. */
   signsOf(hands: Hands): Int8Array {
-    return Int8Array.from(this.places, (place) => (place < 0 ? 0 : hands.signs[place]!));
+    let places = this.places.get(hands.kind);
+    if (!places) {
+      const all = hands.kind.units ?? [];
+      places = this.units.map((unit) => all.findIndex((other) => samePlace(unit, other)));
+      this.places.set(hands.kind, places);
+    }
+    return Int8Array.from(places, (place) => (place < 0 ? 0 : hands.signs[place]!));
   }
 
   on(record: FrameRecord): Finding[] {
@@ -56,11 +60,26 @@ export class FrameRemarks {
       const message = "All z are zero though the molecule is not flat: it looks like a drawing.";
       remarks.push({ code: "X29", message });
     }
+    if (record.mapping !== null) remarks.push(this.mapped(record.mapping, record.kind?.table != null));
     const open = record.hands ? this.openHands(record.hands) : this.notCompared();
     if (open) remarks.push(open);
     const near = record.near && this.nearInWords(record.near);
     if (near) remarks.push({ code: "X41", message: near });
     return remarks;
+  }
+
+  /** The atoms stood in another order and were put into the group's (rows X13, S22). */
+  private mapped(mapping: Int32Array, inSdf: boolean): Finding {
+    const moved = [...mapping].flatMap((file, atom) => (file === atom ? [] : [{ file, atom }]));
+    const named = moved
+      .slice(0, NAMED)
+      .map(({ file, atom }) => `${this.name(atom)} is atom ${file + 1} of the file`);
+    const rest = moved.length > NAMED ? `; and ${moved.length - NAMED} more` : "";
+    return {
+      code: inSdf ? "S22" : "X13",
+      message: `Another order of atoms, mapped by the bonds: ${named.join(", ")}${rest}.`,
+      hint: "The whole mapping goes along into exports.",
+    };
   }
 
   overall(): Finding[] {
@@ -159,6 +178,8 @@ export class FrameRemarks {
 }
 
 function samePlace(a: StereoUnit, b: StereoUnit): boolean {
-  if (a.kind === "centre") return b.kind === "centre" && a.atom === b.atom;
+  if (a.kind === "centre") {
+    return b.kind === "centre" && a.atom === b.atom && a.neighbours.join() === b.neighbours.join();
+  }
   return b.kind === "double-bond" && a.atoms[0] === b.atoms[0] && a.atoms[1] === b.atoms[1];
 }

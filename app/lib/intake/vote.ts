@@ -1,6 +1,9 @@
 import type { StereoUnit } from "../chem/refine.ts";
 import { ConfigurationComparer, isDouble, toConfiguration } from "../chem/stereo.ts";
 import { findStereoUnits } from "../chem/stereo-units.ts";
+import { AROMATIC } from "../sdf/bond-types.ts";
+import { statedOrders } from "../sdf/orders.ts";
+import type { Graph } from "../structure.ts";
 import type { BondKind, Hands } from "./frame-kinds.ts";
 import type { FrameRecord, MoleculeGroup } from "./frame-record.ts";
 
@@ -22,6 +25,7 @@ export function chooseGroup(records: readonly FrameRecord[]): MoleculeGroup | nu
     elements: [...kind.shape.elements],
     isotopes: [...kind.shape.isotopes],
     bonds: [...kind.graph.bonds],
+    ...(kind.seen ? { seen: [...kind.seen] } : {}),
     charge: members.charge,
     multiplicity: members.multiplicity,
     configuration: commonConfiguration(kind, bonded),
@@ -93,12 +97,23 @@ function mostFrequent(values: readonly (number | null)[]): number | null {
   return best;
 }
 
-/** Stereo units of a bond kind that are so by their mean length too, as indices. */
+/** Stereo units of a bond kind that are so by the file's bond order or else their mean length, as indices. */
 function realUnits(kind: BondKind): number[] {
+  const orders = kind.table && statedOrders(kind.graph, kind.table);
   return (kind.units ?? []).flatMap((unit, u) => {
     if (unit.kind === "centre") return [u];
+    const order = orders ? orderOf(kind.graph, orders, unit.atoms) : AROMATIC;
+    if (order !== AROMATIC) return order === 2 ? [u] : [];
     return isDouble(kind.graph, unit, kind.lengths[u]! / Math.max(1, kind.counted)) ? [u] : [];
   });
+}
+
+/** The order of a bond, from the table of its graph. */
+function orderOf({ bonds }: Graph, orders: ArrayLike<number>, [i, j]: readonly [number, number]): number {
+  for (let k = 0; k < orders.length; k++) {
+    if (bonds[2 * k] === Math.min(i, j) && bonds[2 * k + 1] === Math.max(i, j)) return orders[k]!;
+  }
+  return AROMATIC;
 }
 
 function commonConfiguration(

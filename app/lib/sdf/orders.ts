@@ -44,8 +44,11 @@ export function bondOrders(graph: Graph, stated: StatedOrders | null): BondOrder
   return { orders: single, charges: null, radicals: null, origin: "unknown" };
 }
 
-/** Null where file and graph differ in a bond; what the file calls coordination or hydrogen bond may be missing. */
-function statedOrders(graph: Graph, stated: StatedOrders): Uint8Array | null {
+/**
+ * Orders of a graph's bonds as a file states them; null where it states none, or where file and graph differ in a bond.
+ * What the file calls coordination or hydrogen bond may be missing in the graph.
+ */
+export function statedOrders(graph: Graph, stated: StatedOrders): Uint8Array | null {
   const { bonds, orders } = stated;
   if (orders === null) return null;
   const own = new Uint8Array(graph.bonds.length / 2);
