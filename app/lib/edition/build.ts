@@ -1,0 +1,127 @@
+import { CAUTION } from "../export/json.ts";
+import type { SiftRecipe } from "../recipe/recipe.ts";
+import type { SiftResult } from "../recipe/result.ts";
+import { distinctPopulations } from "../thermo/populations.ts";
+import { CONSTANTS_YEAR } from "../units.ts";
+import type { EditionContent, EditionPopulations } from "./content.ts";
+import { shapeExtent } from "./extent.ts";
+import { editionFindings } from "./findings.ts";
+import { methodsText } from "./methods-text.ts";
+import { editionRows } from "./rows.ts";
+import { editionSummary } from "./summary.ts";
+
+/** Everything that an edition is built from; the same source gives the same content. */
+export interface EditionSource {
+  ensemble: EditionContent["ensemble"];
+  inputs: EditionContent["inputs"];
+  level: EditionContent["level"];
+  recipe: SiftRecipe;
+  result: Omit<SiftResult, "seconds">;
+  /** In the order of `result.kept`. */
+  labels: readonly (string | null)[];
+  energies: readonly (number | null)[];
+  positions: Float64Array;
+  temperature: number;
+  weights: "auto" | "copies" | "degeneracy";
+  columns: EditionContent["columns"];
+  version: string;
+}
+
+/**
+ * Builds the content of an edition.
+ *
+ * @example canonicalJson(buildContent(source)) // the bytes that are stored
+ */
+export function buildContent(source: EditionSource): EditionContent {
+  const { level: _level, ...recipe } = source.recipe;
+  const { result } = source;
+  const facts = {
+    schema: "lowlying-edition" as const,
+    version: 1 as const,
+    caution: CAUTION,
+    constants: CONSTANTS_YEAR,
+    units: {
+      energy: source.level?.unit ?? null,
+      relativeEnergy: "kcal/mol",
+      length: "Å",
+      temperature: "K",
+      population: "fraction",
+      entropy: "cal/(mol K)",
+    },
+    ensemble: source.ensemble,
+    inputs: source.inputs,
+    level: source.level,
+    recipe,
+    kept: keptOf(source),
+    dropped: result.dropped.map((frame) => ({ ...frame })),
+    held: result.held,
+    outsideWindow: result.outsideWindow,
+    withoutEnergy: result.withoutEnergy,
+    pairsExamined: result.pairsExamined,
+    populations: populationsOf(source),
+    columns: source.columns,
+  };
+  const rows = editionRows(facts);
+  return {
+    ...facts,
+    words: { summary: editionSummary(facts, rows), methods: methodsOf(facts, source.version) },
+    findings: editionFindings(facts, rows),
+  };
+}
+
+function keptOf({ result, labels, energies, positions, ensemble }: EditionSource): EditionContent["kept"] {
+  const length = 3 * ensemble.atoms;
+  return result.kept.map(({ upperBound, ...kept }, row) => ({
+    ...kept,
+    label: labels[row] ?? null,
+    energy: energies[row] ?? null,
+    extent: shapeExtent(ensemble.elements, positions.subarray(row * length, (row + 1) * length)),
+    ...(upperBound === undefined ? {} : { upperBound }),
+  }));
+}
+
+function populationsOf(source: EditionSource): EditionPopulations | null {
+  if (source.level === null) return null;
+  const { result, level, temperature, weights } = source;
+  const weighed = distinctPopulations(result.kept, level.energyKind, temperature, weights);
+  if (weighed === null) return null;
+  const { freeEnergy, energy, entropy, heatCapacity, effectiveCount } = weighed;
+  return {
+    temperature,
+    weights: weighed.weights.kind,
+    weightsReason: weighed.weights.reason,
+    weightsChosen: weights !== "auto",
+    values: Array.from(weighed.populations, (population, row) => ({
+      weight: weighed.weights.values[row] ?? 0,
+      population,
+    })),
+    freeEnergy,
+    energy,
+    entropy,
+    heatCapacity,
+    effectiveCount,
+  };
+}
+
+function methodsOf(facts: Omit<EditionContent, "words" | "findings">, version: string): string {
+  const { ensemble, kept, dropped, populations } = facts;
+  const bounded = [...kept, ...dropped].filter(({ upperBound }) => upperBound === true).length;
+  const { text, assumptions } = methodsText({
+    formula: ensemble.formula,
+    atoms: ensemble.atoms,
+    files: facts.inputs.files,
+    frames: ensemble.frames,
+    accepted: ensemble.accepted,
+    held: facts.held.length,
+    recipe: facts.recipe,
+    kept: kept.length,
+    dropped: dropped.length,
+    outsideWindow: facts.outsideWindow.length,
+    withoutEnergy: facts.withoutEnergy.length,
+    upperBounds: bounded,
+    level: facts.level,
+    populations,
+    version,
+  });
+  return [text, ...assumptions.map((assumption) => `Assumed: ${assumption}`)].join("\n");
+}

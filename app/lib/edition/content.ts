@@ -1,0 +1,163 @@
+import { z } from "zod";
+import { siftRecipeSchema } from "../recipe/recipe.ts";
+
+/**
+ * Everything that an edition shows, as plain data: what is stored as canonical JSON under its SHA-256, handed out as
+ * `results.json`, and recomputed by "recompute and verify". It holds no ids, names or addresses of people: a guest may
+ * read all of it.
+ */
+
+const sha256 = z.string().regex(/^[0-9a-f]{64}$/);
+const finite = z.number();
+
+const keptSchema = z.object({
+  frame: z.number().int(),
+  label: z.string().nullable(),
+  /** As stored, in the unit of the level. */
+  energy: finite.nullable(),
+  relativeEnergy: finite.nullable(),
+  degeneracy: z.number().int(),
+  symmetryNumber: z.number().int().nullable(),
+  copies: finite.nullable(),
+  mirrorRmsd: finite,
+  found: z.number().int(),
+  upperBound: z.boolean().optional(),
+  /** Largest distance between two heavy atoms, Å: how stretched the shape is. */
+  extent: finite,
+});
+
+const droppedSchema = z.object({
+  frame: z.number().int(),
+  repeats: z.number().int(),
+  rmsd: finite,
+  energyDifference: finite.nullable(),
+  mirror: z.boolean().optional(),
+  upperBound: z.boolean().optional(),
+});
+
+const populationsSchema = z.object({
+  temperature: finite,
+  weights: z.enum(["copies", "degeneracy"]),
+  weightsReason: z.string(),
+  /** True where the person chose the weights instead of leaving them to the kind of energy. */
+  weightsChosen: z.boolean(),
+  /** In the order of `kept`. */
+  values: z.array(z.object({ weight: finite, population: finite })),
+  freeEnergy: finite,
+  energy: finite,
+  entropy: finite,
+  heatCapacity: finite,
+  effectiveCount: finite,
+});
+
+const columnSchema = z.object({
+  name: z.string(),
+  kind: z.enum(["energy", "property"]),
+  unit: z.string().nullable(),
+  rule: z.string().nullable(),
+  /** In the order of `kept`; null where missing. */
+  values: z.array(finite.nullable()),
+  sha256,
+});
+
+/** A sentence on what limits the results; "open" is for somebody to settle. */
+export const editionFindingSchema = z.object({
+  kind: z.enum(["open", "know"]),
+  title: z.string(),
+  text: z.string(),
+});
+export type EditionFinding = z.infer<typeof editionFindingSchema>;
+
+export const editionContentSchema = z.object({
+  schema: z.literal("lowlying-edition"),
+  version: z.literal(1),
+  caution: z.string(),
+  constants: z.string(),
+  units: z.record(z.string(), z.string().nullable()),
+  ensemble: z.object({
+    name: z.string(),
+    formula: z.string(),
+    atoms: z.number().int(),
+    elements: z.array(z.number().int()),
+    isotopes: z.array(z.number().int()).nullable(),
+    atomLabels: z.array(z.string().nullable()).nullable(),
+    bonds: z.array(z.number().int()),
+    orders: z.object({
+      orders: z.array(z.number()),
+      charges: z.array(z.number()).nullable(),
+      radicals: z.array(z.number()).nullable(),
+      origin: z.enum(["file", "perceived", "unknown"]),
+    }),
+    charge: z.object({ value: z.number().int(), origin: z.enum(["file", "perceived"]) }),
+    multiplicity: z.object({ value: z.number().int(), origin: z.enum(["file", "assumed"]) }),
+    chirality: z.enum(["achiral", "chiral", "unsure"]),
+    frames: z.number().int(),
+    accepted: z.number().int(),
+    remarked: z.number().int(),
+    held: z.number().int(),
+    openQuestions: z.number().int(),
+  }),
+  inputs: z.object({
+    files: z.array(
+      z.object({
+        name: z.string(),
+        format: z.string(),
+        sha256,
+        bytes: z.number().int(),
+        firstFrame: z.number().int(),
+        frames: z.number().int(),
+      }),
+    ),
+    /** Over elements, bonds, numbers and coordinates of the frames that took part. */
+    framesSha256: sha256,
+  }),
+  level: z
+    .object({
+      name: z.string(),
+      unit: z.string(),
+      energyKind: z.enum(["electronic", "zero-point", "enthalpy", "free"]),
+      temperature: finite.nullable(),
+      /** False while the energies are only taken as electronic because nobody said. */
+      kindStated: z.boolean(),
+      ordinal: z.number().int(),
+    })
+    .nullable(),
+  /** Without the level's id: its name and its column's checksum say which. */
+  recipe: siftRecipeSchema.omit({ level: true }),
+  kept: z.array(keptSchema),
+  dropped: z.array(droppedSchema),
+  held: z.array(z.object({ frame: z.number().int(), reason: z.string() })),
+  outsideWindow: z.array(z.number().int()),
+  withoutEnergy: z.array(z.number().int()),
+  pairsExamined: z.number().int(),
+  populations: populationsSchema.nullable(),
+  columns: z.array(columnSchema),
+  words: z.object({ summary: z.array(z.string()), methods: z.string() }),
+  findings: z.array(editionFindingSchema),
+});
+
+export type EditionContent = z.infer<typeof editionContentSchema>;
+export type EditionKept = EditionContent["kept"][number];
+export type EditionPopulations = NonNullable<EditionContent["populations"]>;
+
+/** One file handed out with an edition. */
+export const editionFileSchema = z.object({ name: z.string(), bytes: z.number().int(), sha256 });
+export type EditionFile = z.infer<typeof editionFileSchema>;
+
+/** What an edition was frozen from: enough to find everything again and to compute it anew. Never shown to guests. */
+export const editionRecipeSchema = z.object({
+  sift: z.string(),
+  recipe: siftRecipeSchema,
+  temperature: finite,
+  weights: z.enum(["auto", "copies", "degeneracy"]),
+  /** Ids of the columns shown, in the order of the content. */
+  columns: z.array(z.string()),
+});
+export type EditionRecipe = z.infer<typeof editionRecipeSchema>;
+
+export const editionInputsSchema = z.object({
+  files: z.array(z.object({ position: z.number().int(), name: z.string(), sha256 })),
+  frames: sha256,
+  columns: z.array(z.object({ id: z.string(), name: z.string(), sha256 })),
+});
+export type EditionInputs = z.infer<typeof editionInputsSchema>;

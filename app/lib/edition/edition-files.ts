@@ -1,0 +1,75 @@
+import { writeCsv } from "../export/csv.ts";
+import type { ExportSet } from "../export/export-set.ts";
+import { writeSdf } from "../export/sdf-writer.ts";
+import { writeXyz } from "../export/xyz-writer.ts";
+import { ENERGY_UNITS } from "../units.ts";
+import { canonicalJson } from "./canonical-json.ts";
+import type { EditionContent } from "./content.ts";
+
+/** A file of an edition, in pieces that are made as they are taken. */
+export interface WrittenFile {
+  name: string;
+  pieces: Iterable<string>;
+}
+
+/**
+ * The files that follow from the content of an edition and the coordinates of its conformers alone.
+ *
+ * @param positions packed [conformer][atom][x, y, z], in the order of `kept`
+ * @example editionFiles(content, positions).map(({ name }) => name) // "distinct-set.xyz", ...
+ */
+export function editionFiles(content: EditionContent, positions: Float64Array): WrittenFile[] {
+  const set = exportSet(content);
+  const length = 3 * content.ensemble.atoms;
+  const rowOf = new Map(content.kept.map(({ frame }, row) => [frame, row]));
+  const positionsOf = (frame: number) => {
+    const from = (rowOf.get(frame) ?? 0) * length;
+    return positions.subarray(from, from + length);
+  };
+  const columns = content.columns.map(({ name, unit, values }) => ({ name, unit, values }));
+  const properties = columns.filter((_, k) => content.columns[k]?.kind === "property");
+  const { bonds, orders } = content.ensemble;
+  return [
+    { name: "distinct-set.xyz", pieces: writeXyz(set, positionsOf) },
+    { name: "distinct-set.sdf", pieces: writeSdf(set, { bonds, orders }, positionsOf, properties) },
+    { name: "results.csv", pieces: writeCsv(set, columns) },
+    { name: "results.json", pieces: [canonicalJson(content)] },
+    { name: "methods.txt", pieces: [`${content.words.methods}\n\n${content.caution}\n`] },
+  ];
+}
+
+/** The distinct set as the writers take it. Its id stands in none of these files. */
+function exportSet(content: EditionContent): ExportSet {
+  const { ensemble, inputs, level, recipe, kept, populations } = content;
+  const unit = ENERGY_UNITS.find((one) => one === level?.unit);
+  return {
+    ensemble: { id: "", name: ensemble.name, formula: ensemble.formula },
+    elements: ensemble.elements,
+    isotopes: ensemble.isotopes,
+    atomLabels: ensemble.atomLabels,
+    sources: inputs.files,
+    level: level && unit ? { name: level.name, unit, energyKind: level.energyKind } : null,
+    recipe: { ...recipe, level: level?.name ?? null },
+    temperature: populations?.temperature ?? 0,
+    weights: populations?.weights ?? null,
+    conformers: kept.map((conformer, row) => ({
+      ...conformer,
+      population: populations?.values[row]?.population ?? null,
+    })),
+  };
+}
+
+/** What each file holds, in words, and the name of its format. */
+export const FILE_WORDS: Record<string, { title: string; format: string }> = {
+  "distinct-set.xyz": { title: "Distinct set", format: "XYZ" },
+  "distinct-set.sdf": { title: "Distinct set", format: "SDF" },
+  "results.csv": { title: "Populations and properties", format: "CSV" },
+  "averages.csv": { title: "Averages", format: "CSV" },
+  "results.json": { title: "All results with recipe", format: "JSON" },
+  "methods.txt": { title: "Methods text", format: "text" },
+  "citation.bib": { title: "Citation", format: "BibTeX" },
+  "CITATION.cff": { title: "Citation", format: "CFF" },
+  "manifest.json": { title: "Manifest of the bundle", format: "JSON" },
+  "bundle.zip": { title: "Bundle with checksums", format: "zip" },
+  "conformers.zip": { title: "One file a conformer, for the next program", format: "zip" },
+};
