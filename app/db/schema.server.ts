@@ -31,6 +31,8 @@ export const answersSchema = z.object({
   level: z.string().nullable(),
   energyKind: z.enum(["electronic", "zero-point", "enthalpy", "free"]).default("electronic"),
   energyTemperature: z.number().nullable().default(null),
+  /** How the files are to be read where they leave it open: the option by the id of its question. */
+  reading: z.record(z.string(), z.string()).optional(),
 });
 
 /** Orders per bond (in the order of the ensemble's bonds), charge and unpaired electrons per atom. */
@@ -42,6 +44,7 @@ export const bondTableSchema = z.object({
 });
 
 export const frameFieldsSchema = z.array(z.tuple([z.string(), z.string()]));
+export const frameMappingSchema = z.array(z.number().int());
 
 /** How a column came to be, where it was not read from a file. */
 export const columnDefinitionSchema = z.discriminatedUnion("type", [
@@ -386,6 +389,8 @@ export const frames = mysqlTable(
     comment: text().notNull(),
     /** Data fields of an SDF record in file order, [name, value] pairs: the source of its numbers as the comment is. */
     fields: jsonColumn(frameFieldsSchema)(),
+    /** Which atom of the file (from 0) stands at each place, where the file has another order of atoms than the ensemble. */
+    mapping: jsonColumn(frameMappingSchema)(),
     state: varchar({ length: 8, enum: ["accepted", "remarked", "held"] }).notNull(),
     /** What the reader and the classifier say, before anybody decides otherwise. */
     readState: varchar({ length: 8, enum: ["accepted", "remarked", "held"] }).notNull(),
