@@ -4,35 +4,45 @@ import { type Part, Refiner, signInOrder } from "./refine.ts";
 /** Rounds times atoms after which a search gives up: far beyond what molecules need, a second or two. */
 const WORK_LIMIT = 20e6;
 
+export interface MatchOptions {
+  workLimit?: number;
+  /** Also search over end atoms: needed where the hand of CH2 and CH3 counts, which tells their hydrogens apart. */
+  everyAtom?: boolean;
+}
+
 /**
  * A mapping of one graph onto another that keeps elements, isotopes, bonds, given colours and the handedness of
  * every stereo unit; exact, by refinement and individualisation (McKay, Congr. Numer. 1981, 30, 45).
  *
- * Hydrogens and other end atoms are not searched over: those at one atom are interchangeable once that atom is placed.
+ * Hydrogens and other end atoms are not searched over (unless `everyAtom`): those at one atom are interchangeable once
+ * that atom is placed.
  *
  * @returns image in `b` of every atom of `a`; null when there is none; "undecided" when the work limit was met
  */
-export function matchParts(a: Part, b: Part, workLimit = WORK_LIMIT): Int32Array | null | "undecided" {
+export function matchParts(
+  a: Part,
+  b: Part,
+  { workLimit = WORK_LIMIT, everyAtom = false }: MatchOptions = {},
+): Int32Array | null | "undecided" {
   if (a.graph.elements.length !== b.graph.elements.length || a.graph.bonds.length !== b.graph.bonds.length) {
     return null;
   }
   const refiner = new Refiner([a, b]);
   const colours = refiner.initial();
   if (refiner.refine(colours) < 0) return null;
-  return new Search(a, b, refiner, workLimit).run(colours);
+  const free = everyAtom ? new Uint8Array(a.graph.elements.length) : interchangeable(a.graph);
+  return new Search(a, b, refiner, workLimit, free).run(colours);
 }
 
 class Search {
-  private readonly free: Uint8Array;
-
   constructor(
     private readonly a: Part,
     private readonly b: Part,
     private readonly refiner: Refiner,
     private readonly limit: number,
-  ) {
-    this.free = interchangeable(a.graph);
-  }
+    /** End atoms that need not be searched over. */
+    private readonly free: Uint8Array,
+  ) {}
 
   run(colours: Int32Array): Int32Array | null | "undecided" {
     const cell = this.nextCell(colours);

@@ -1,0 +1,60 @@
+/** How a quantity is averaged over conformers. */
+export const AVERAGE_RULES = ["linear", "r-6", "r-3", "circular", "rms", "odd"] as const;
+export type AverageRule = (typeof AVERAGE_RULES)[number];
+
+/** What each rule is for, in a chemist's words; the first part names it in tables. */
+export const RULE_WORDS: Record<AverageRule, { name: string; when: string }> = {
+  linear: { name: "linear", when: "A plain weighted mean: energies, couplings, shifts, descriptors." },
+  "r-6": { name: "r^-6", when: "A distance as an NOE sees it, tumbling slower than the exchange." },
+  "r-3": { name: "r^-3", when: "Motion faster than tumbling, such as a turning methyl group." },
+  circular: { name: "circular", when: "An angle that runs all the way round, such as a torsion." },
+  rms: { name: "root of mean square", when: "The length of a vector, such as a dipole moment." },
+  odd: { name: "linear, both hands", when: "Changes sign in the mirror image, such as optical rotation." },
+};
+
+/**
+ * The rule of a column that nobody has said anything about: angles go round, everything else is a plain mean.
+ *
+ * @example initialRule("°") // "circular"; initialRule("Å") // "linear"
+ */
+export function initialRule(unit: string | null): AverageRule {
+  return unit === "°" || unit === "deg" ? "circular" : "linear";
+}
+
+/** The rule as stored, or that of a column without one. */
+export function ruleOf(column: { rule: string | null; unit: string | null }): AverageRule {
+  return AVERAGE_RULES.find((rule) => rule === column.rule) ?? initialRule(column.unit);
+}
+
+/**
+ * Whether a name is that of a quantity which changes sign in the mirror image. Names as the trade writes them; common
+ * practice, no source.
+ *
+ * @example isPseudoscalar("Optical rotation 589 nm") // true
+ */
+export function isPseudoscalar(name: string): boolean {
+  return /(optical|specific|molar)[ _-]*rotation|rotat(ory|ional)[ _-]*strength|circular[ _-]*dichroism|\b[ev]?cd\b|\boptrot\b|\bord\b/i.test(
+    name.replaceAll("_", " "),
+  );
+}
+
+/** True for a unit of length, where r^-6 and r^-3 can be meant. */
+export function isLength(unit: string | null): boolean {
+  return unit !== null && ["Å", "A", "angstrom", "Angstrom", "nm", "pm", "bohr"].includes(unit);
+}
+
+/**
+ * Rules that can be meant for a quantity, the one to propose first.
+ *
+ * @example possibleRules({ name: "d_C1_ortho", unit: "Å" }) // ["r-6", "r-3", "linear"]
+ */
+export function possibleRules(column: { name: string; unit: string | null }): AverageRule[] {
+  if (isPseudoscalar(column.name)) return ["odd", "linear"];
+  if (initialRule(column.unit) === "circular") return ["circular", "linear"];
+  if (isLength(column.unit)) {
+    return /gyration|largest|\brg\b/i.test(column.name.replaceAll("_", " "))
+      ? ["linear", "r-6", "r-3"]
+      : ["r-6", "r-3", "linear"];
+  }
+  return /dipole/i.test(column.name) ? ["rms", "linear"] : ["linear", "rms"];
+}

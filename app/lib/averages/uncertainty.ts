@@ -1,0 +1,77 @@
+import { quantileOfSorted } from "../stats/quantile.ts";
+import { type Moments, sums, valueBehind } from "./average.ts";
+
+/** What the error of the level makes of an average. */
+export interface AverageError {
+  /** Standard deviation over the draws; of an angle the circular one, in degrees. */
+  sd: number;
+  /** 2.5 and 97.5 % of the draws; null for an angle. */
+  low: number | null;
+  high: number | null;
+  /** Standard deviation of the mean resultant length; null unless it is an angle. */
+  resultantSd: number | null;
+}
+
+/** Calls `visit` with the populations of one draw after another; the array may be the same one each time. */
+export type EachDraw = (visit: (populations: Float64Array) => void) => void;
+
+/**
+ * Averages of several quantities in every draw of the populations, and how far they scatter. One walk over the draws
+ * serves all quantities.
+ *
+ * @param each hands out the draws, as `drawPopulations` makes them
+ * @returns one entry a quantity; null where it has no value, or none in the draws
+ */
+export function averageErrors(quantities: readonly Moments[], each: EachDraw): (AverageError | null)[] {
+  const made = quantities.map((): { values: number[]; resultants: number[] } => ({
+    values: [],
+    resultants: [],
+  }));
+  each((populations) => {
+    quantities.forEach((moments, k) => {
+      if (moments.zeroDistance) return;
+      const [share, first, second] = sums(moments, populations);
+      if (!(share > 0)) return;
+      const value = valueBehind(moments.rule, first / share, second / share);
+      if (value !== null) made[k]!.values.push(value);
+      if (moments.second) made[k]!.resultants.push(Math.hypot(first, second) / share);
+    });
+  });
+  return quantities.map((moments, k) => {
+    const { values, resultants } = made[k]!;
+    if (values.length < 2) return null;
+    if (moments.fixed) return { sd: 0, low: 0, high: 0, resultantSd: null };
+    if (moments.second) {
+      return { sd: circularSd(values), low: null, high: null, resultantSd: sdOf(resultants) };
+    }
+    const sorted = Float64Array.from(values).sort();
+    return {
+      sd: sdOf(values),
+      low: quantileOfSorted(sorted, 0.025),
+      high: quantileOfSorted(sorted, 0.975),
+      resultantSd: null,
+    };
+  });
+}
+
+/** About the mean in two passes: no digits are lost where the values lie close together. */
+function sdOf(values: readonly number[]): number {
+  let mean = 0;
+  for (const value of values) mean += value;
+  mean /= values.length;
+  let square = 0;
+  for (const value of values) square += (value - mean) ** 2;
+  return Math.sqrt(square / values.length);
+}
+
+function circularSd(degrees: readonly number[]): number {
+  let x = 0;
+  let y = 0;
+  for (const value of degrees) {
+    x += Math.cos((value * Math.PI) / 180);
+    y += Math.sin((value * Math.PI) / 180);
+  }
+  const resultant = Math.min(1, Math.hypot(x, y) / degrees.length);
+  // Directions that all agree leave a rounding below 1 that the logarithm would turn into a visible angle.
+  return resultant > 1 - 1e-14 ? 0 : (Math.sqrt(-2 * Math.log(resultant)) * 180) / Math.PI;
+}
