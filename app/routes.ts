@@ -12,10 +12,16 @@ export default [
   route("sign-up", "routes/auth/sign-up.tsx"),
   route("reset-password", "routes/auth/forgot-password.tsx"),
   route("reset-password/:secret", "routes/auth/reset-password.tsx"),
+  route("invitation/:secret", "routes/auth/invitation.tsx"),
+  route("confirm-address/:secret", "routes/auth/confirm-address.tsx"),
+  route("restore-account/:secret", "routes/auth/restore-account.tsx"),
+  route("account", "routes/account.tsx"),
+  route("mail", "routes/mail.tsx"),
 
   route("teams", "routes/team/index.ts"),
   route("teams/:team", "routes/team/layout.tsx", [
     index("routes/team/series.tsx"),
+    route("people", "routes/team/people.tsx"),
     route("tokens", "routes/team/tokens.tsx"),
   ]),
 

@@ -19,14 +19,16 @@ const SECRET_KEYS = [
 ];
 
 /**
- * A path as the log may show it: secrets of links and resets masked, query left out, since names and selections
+ * A path as the log may show it: secrets of links, invitations and mails masked, query left out, since names and selections
  * of unpublished work stand there.
  *
  * @example loggablePath("/reset-password/aF3k") // "/reset-password/***"
  */
 export function loggablePath(path: string): string {
   const plain = path.split("?", 1)[0] ?? path;
-  return plain.replace(/^(\/+(?:reset-password|e|invitations)\/+)[^/]+/i, "$1***").slice(0, 300);
+  return plain
+    .replace(/^(\/+(?:reset-password|e|invitation|confirm-address|restore-account)\/+)[^/]+/i, "$1***")
+    .slice(0, 300);
 }
 
 /**

@@ -67,7 +67,7 @@ describe("the log", () => {
     ["/reset-password/aVeryLongSecret", "/reset-password/***"],
     ["/reset-password/aVeryLongSecret.data", "/reset-password/***"],
     ["/e/secret/files/x.csv", "/e/***/files/x.csv"],
-    ["/invitations/secret", "/invitations/***"],
+    ["/invitation/secret", "/invitations/***"],
     ["//reset-password/secret", "//reset-password/***"],
     ["/RESET-PASSWORD/secret", "/RESET-PASSWORD/***"],
     ["/teams/abc?search=compound", "/teams/abc"],

@@ -59,6 +59,9 @@ export function AccountMenu() {
               <span className="truncate">Team {team.name}</span>
             </Link>
           ))}
+          <Link to={href("/account")} className={ENTRY}>
+            Your account
+          </Link>
           <Form method="post" action={href("/logout")}>
             <button type="submit" className={ENTRY}>
               Sign out

@@ -4,7 +4,7 @@ import { formatCount } from "~/lib/format";
 const TAB =
   "flex shrink-0 items-baseline gap-1 py-2 font-medium whitespace-nowrap text-ink-2 no-underline hover:text-ink aria-[current=page]:text-ink aria-[current=page]:inset-shadow-[0_-2px_0_var(--color-mark)] pointer-coarse:py-3";
 
-/** The series of a team, and at the right its tokens; you are at the magenta one. */
+/** The series of a team, at the right its people and tokens; you are at the magenta one. */
 export function TeamTabs({
   team,
   series,
@@ -15,7 +15,7 @@ export function TeamTabs({
   series: readonly { id: string; name: string; ensembles: number }[];
   /** Id of the series shown; null shows all. */
   chosen: string | null;
-  at?: "series" | "tokens";
+  at?: "series" | "people" | "tokens";
 }) {
   const base = href("/teams/:team", { team });
   const all = series.reduce((sum, one) => sum + one.ensembles, 0);
@@ -39,10 +39,13 @@ export function TeamTabs({
         </Link>
       ))}
       <Link
-        to={href("/teams/:team/tokens", { team })}
+        to={href("/teams/:team/people", { team })}
         className={`ml-auto ${TAB}`}
-        aria-current={here(at === "tokens")}
+        aria-current={here(at === "people")}
       >
+        People
+      </Link>
+      <Link to={href("/teams/:team/tokens", { team })} className={TAB} aria-current={here(at === "tokens")}>
         Tokens
       </Link>
     </nav>

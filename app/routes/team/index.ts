@@ -1,7 +1,7 @@
 import { href, redirect } from "react-router";
 import { actorContext, requestIdContext } from "~/context";
 import { requireUserMiddleware } from "~/middleware/require-user.server";
-import { forbidden, forPage } from "~/services/http.server";
+import { forPage } from "~/services/http.server";
 import { findPerson } from "~/services/teams/find-person.server";
 import type { Route } from "./+types/index";
 
@@ -12,8 +12,8 @@ export async function loader({ context }: Route.LoaderArgs) {
   return forPage(context.get(requestIdContext), async () => {
     const person = await findPerson(context.get(actorContext));
     const team = person?.teams[0]?.id;
-    if (team === undefined)
-      throw forbidden("You belong to no team yet. Ask an owner of a team to let you in.");
+    // Who belongs to no team reads there what to do.
+    if (team === undefined) return redirect(href("/account"));
     return redirect(href("/teams/:team", { team }));
   });
 }

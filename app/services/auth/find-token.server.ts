@@ -1,6 +1,6 @@
 import { and, eq, gt, isNull, lt, or } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
-import { apiTokens, members, users } from "../../db/schema.server.ts";
+import { apiTokens, members, teams, users } from "../../db/schema.server.ts";
 import type { Actor } from "./access.server.ts";
 import { secretSha } from "./secret.server.ts";
 
@@ -10,8 +10,8 @@ const TOKEN_FORM = /^lowl_[A-Za-z0-9_-]{43}$/;
 const USED_STEP_MS = 60_000;
 
 /**
- * The actor of a bearer token; null where it is unknown, ended or revoked, or its user is disabled or no longer
- * in the team.
+ * The actor of a bearer token; null where it is unknown, ended or revoked, its user is disabled or no longer in the
+ * team, or the team is deleted.
  */
 export async function findToken(
   secret: string,
@@ -29,6 +29,7 @@ export async function findToken(
     .from(apiTokens)
     .innerJoin(users, and(eq(users.id, apiTokens.userId), isNull(users.disabledAt)))
     .innerJoin(members, and(eq(members.teamId, apiTokens.teamId), eq(members.userId, apiTokens.userId)))
+    .innerJoin(teams, and(eq(teams.id, apiTokens.teamId), isNull(teams.deletedAt)))
     .where(
       and(
         eq(apiTokens.tokenSha, secretSha(secret)),

@@ -67,7 +67,7 @@ export async function makeTokenByEmail(options: {
     .select({ userId: users.id, teamId: teams.id, teamName: teams.name })
     .from(users)
     .leftJoin(members, eq(members.userId, users.id))
-    .leftJoin(teams, eq(teams.id, members.teamId))
+    .leftJoin(teams, and(eq(teams.id, members.teamId), isNull(teams.deletedAt)))
     .where(and(eq(users.email, email), isNull(users.disabledAt)))
     .orderBy(asc(members.createdAt), asc(teams.id));
   if (rows.length === 0)

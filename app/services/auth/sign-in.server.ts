@@ -1,9 +1,13 @@
-import { and, eq, isNull } from "drizzle-orm";
-import { db, inTransaction } from "../../db/client.server.ts";
-import { users } from "../../db/schema.server.ts";
+import { createHash } from "node:crypto";
+import { and, desc, eq, isNull } from "drizzle-orm";
+import { z } from "zod";
+import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
+import { logbook, users } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { browserWords } from "../account/browser-words.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { queueMail } from "../mail/queue-mail.server.ts";
 import { hashPassword, verifyPassword } from "./hash-password.server.ts";
 import { startSession } from "./start-session.server.ts";
 import { addressRange, clearAttempts, type Throttle, takeAttempt } from "./throttle.server.ts";
@@ -12,6 +16,8 @@ const REST_SECONDS = 15 * 60;
 const WRONG_PASSWORDS = 10;
 /** Of one range over all accounts: stops a list of passwords from being tried on one account after the other. */
 const WRONG_IN_RANGE = 100;
+const SIGN_INS_LOOKED_AT = 200;
+const signInData = z.object({ browser: z.string().optional() });
 
 export interface Caller {
   /** Address as TRUST_PROXY gives it. */
@@ -52,6 +58,33 @@ export function restingError(seconds: number): DomainError {
     `There were too many tries from here. Wait ${minutes === 1 ? "a minute" : `${minutes} minutes`}, or reset the password.`,
     { extra: { retryAfter: seconds } },
   );
+}
+
+/** Enough of a checksum to know a browser again, too little to be of use elsewhere. */
+const browserMark = (userAgent: string) =>
+  createHash("sha256").update(userAgent, "utf8").digest("hex").slice(0, 12);
+
+/** Writes the sign-in down, and tells the person by mail where it comes from a browser that was never used before. */
+async function noteSignIn(
+  tx: Transaction,
+  by: { userId: string; tokenId: null; origin: string },
+  email: string,
+  userAgent: string | null,
+): Promise<void> {
+  const browser = userAgent === null ? undefined : browserMark(userAgent);
+  const before = await tx
+    .select({ data: logbook.data })
+    .from(logbook)
+    .where(and(eq(logbook.userId, by.userId), eq(logbook.type, "sign-in")))
+    .orderBy(desc(logbook.id))
+    .limit(SIGN_INS_LOOKED_AT);
+  await writeEntry(tx, { teamId: null }, by, { type: "sign-in", data: { browser } });
+  const marks = before.map(({ data }) => signInData.safeParse(data).data?.browser);
+  // Sign-ins of before browsers were noted tell nothing either way.
+  const known = marks.filter((mark) => mark !== undefined);
+  if (browser === undefined || known.length === 0 || known.includes(browser)) return;
+  const body = `Your Lowlying account was signed in to from a browser that was not used before: ${browserWords(userAgent)}.\n\nIf it was not you, change your password at once; it ends every other session:\n${env().APP_ORIGIN}/account`;
+  await queueMail({ recipient: email, subject: "A sign-in from a new browser on Lowlying", body }, tx);
 }
 
 interface Account {
@@ -109,7 +142,7 @@ export async function signIn(options: {
     if (renewed !== null) {
       await tx.update(users).set({ passwordHash: renewed }).where(eq(users.id, account.id));
     }
-    await writeEntry(tx, { teamId: null }, by, { type: "sign-in", data: {} });
+    await noteSignIn(tx, { ...by, userId: account.id }, email, userAgent);
     return startSession({ userId: account.id, stay: options.stay, userAgent }, tx);
   });
   await clearAttempts(throttle);

@@ -23,7 +23,7 @@ export async function findPerson(actor: Actor): Promise<Person | null> {
     .select({ name: users.name, email: users.email, id: teams.id, team: teams.name, role: members.role })
     .from(users)
     .leftJoin(members, eq(members.userId, users.id))
-    .leftJoin(teams, eq(teams.id, members.teamId))
+    .leftJoin(teams, and(eq(teams.id, members.teamId), isNull(teams.deletedAt)))
     .where(and(eq(users.id, actor.userId), isNull(users.disabledAt)))
     .orderBy(asc(members.createdAt), asc(teams.id));
   const first = rows[0];

@@ -10,13 +10,19 @@ export interface TeamView {
   role: MemberRole;
   /** True where the person may take in, compute, hold and release. */
   mayCompute: boolean;
+  /** Longest life of a read-only link, days. */
+  linkDays: number;
 }
 
 /** Head of a team's pages. */
 export async function loadTeam(actor: Actor, teamId: string): Promise<TeamView> {
   const grant = await accessTeam(actor, "read", teamId);
-  const rows = await db.select({ name: teams.name }).from(teams).where(eq(teams.id, grant.teamId)).limit(1);
-  const name = rows[0]?.name;
-  if (name === undefined || grant.role === "guest") throw notFound();
-  return { id: grant.teamId, name, role: grant.role, mayCompute: roleMay(grant.role, "compute") };
+  const rows = await db
+    .select({ name: teams.name, linkDays: teams.linkDays })
+    .from(teams)
+    .where(eq(teams.id, grant.teamId))
+    .limit(1);
+  const row = rows[0];
+  if (row === undefined || grant.role === "guest") throw notFound();
+  return { ...row, id: grant.teamId, role: grant.role, mayCompute: roleMay(grant.role, "compute") };
 }

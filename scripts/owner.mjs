@@ -1,0 +1,43 @@
+// `npm run -s owner -- --email ADDRESS --team NAME`
+// Makes a team and prints the one-time link by which its first owner joins. Uses the database of the running
+// instance: DATABASE_URL, or the server of .data, which `npm start` runs.
+import { parseArgs } from "node:util";
+import { runningUrl } from "./database.mjs";
+import { dataFolder, loadSettings } from "./lib/prepare.mjs";
+import { StartError } from "./lib/processes.mjs";
+
+const USAGE = "npm run -s owner -- --email ADDRESS --team NAME";
+
+function readArguments() {
+  let values;
+  try {
+    ({ values } = parseArgs({ options: { email: { type: "string" }, team: { type: "string" } } }));
+  } catch (error) {
+    throw new StartError(`${error.message}\n${USAGE}`);
+  }
+  const { email, team } = values;
+  if (!email || !team) throw new StartError(`Say who and which team: --email ADDRESS --team NAME\n${USAGE}`);
+  return { email, team };
+}
+
+async function main() {
+  const options = readArguments();
+  loadSettings();
+  process.env.DATABASE_URL ||= runningUrl(dataFolder()) ?? "";
+  if (!process.env.DATABASE_URL) {
+    throw new StartError(
+      "No database runs here. Start the application first (npm start), or set DATABASE_URL.",
+    );
+  }
+  const { tsImport } = await import("tsx/esm/api");
+  const { makeFirstOwnerOnce } = await tsImport(
+    "../app/services/people/first-owner.server.ts",
+    import.meta.url,
+  );
+  console.log(await makeFirstOwnerOnce(options));
+}
+
+main().catch((error) => {
+  console.error(error instanceof StartError || error.name === "DomainError" ? error.message : error);
+  process.exit(1);
+});
