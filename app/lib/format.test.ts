@@ -112,6 +112,7 @@ describe("words", () => {
     expect(formatBytes(1_153_434)).toBe("1.1\u00a0MB");
     expect(formatBytes(512 * 2 ** 20)).toBe("512\u00a0MB");
     expect(formatSeconds(0.104)).toBe("0.1\u00a0s");
+    expect(formatSeconds(0.004)).toBe("under 0.01\u00a0s");
     expect(formatSeconds(9)).toBe("9.0\u00a0s");
     expect(formatSeconds(40)).toBe("40\u00a0s");
     expect(formatSeconds(130)).toBe("2\u00a0min");

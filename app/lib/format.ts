@@ -162,10 +162,11 @@ export function formatBytes(bytes: Maybe): string {
 /**
  * A span of time in words, rounded as one would say it.
  *
- * @example formatSeconds(0.104) // "0.1 s"; formatSeconds(130) // "2 min"
+ * @example formatSeconds(0.104) // "0.1 s"; formatSeconds(0.002) // "under 0.01 s"; formatSeconds(130) // "2 min"
  */
 export function formatSeconds(seconds: Maybe): string {
   if (seconds === null || seconds === undefined || !Number.isFinite(seconds)) return ABSENT;
+  if (seconds < 0.01) return `under ${withUnit("0.01", "s")}`;
   if (seconds < 10) return withUnit(fixed(seconds, seconds < 0.1 ? 2 : 1), "s");
   if (seconds < 90) return withUnit(fixed(seconds, 0), "s");
   if (seconds < 5400) return withUnit(fixed(seconds / 60, 0), "min");

@@ -18,6 +18,9 @@ export interface FigureData {
   rows: readonly (readonly (string | number | null)[])[];
 }
 
+/** Small words, but targets of 24 px, 44 where the pointer is coarse. */
+const TOOL =
+  "inline-flex min-h-6 min-w-6 items-center justify-center no-underline! hover:underline! pointer-coarse:min-h-11 pointer-coarse:min-w-11";
 const ROWS_WITHOUT_SCRIPT = 200;
 const ROWS_SHOWN = 500;
 
@@ -48,14 +51,23 @@ export function ChartFrame({
         <h3 id={id} className="text-sm font-semibold">
           {title}
         </h3>
-        <span className="flex gap-3 text-xs print:hidden [&>button]:no-underline [&>button:hover]:underline">
-          <TextButton aria-expanded={open} aria-controls={`${id}-table`} onClick={() => setOpen(!open)}>
+        <span className="-my-1 flex gap-2 text-xs">
+          <TextButton
+            className={TOOL}
+            aria-expanded={open}
+            aria-controls={`${id}-table`}
+            onClick={() => setOpen(!open)}
+          >
             Table<span className="sr-only"> of {title}</span>
           </TextButton>
-          <TextButton onClick={() => saveText(`${fileName}.csv`, "text/csv", toCsv(head, data.rows))}>
+          <TextButton
+            className={TOOL}
+            onClick={() => saveText(`${fileName}.csv`, "text/csv", toCsv(head, data.rows))}
+          >
             CSV<span className="sr-only"> of {title}</span>
           </TextButton>
           <TextButton
+            className={TOOL}
             onClick={() => {
               const svg = figure.current?.querySelector("svg");
               if (svg) saveText(`${fileName}.svg`, "image/svg+xml", figureSvg(svg, title));
@@ -65,9 +77,11 @@ export function ChartFrame({
           </TextButton>
         </span>
       </figcaption>
-      <div ref={figure}>{children}</div>
+      <div ref={figure} className="noscript:hidden">
+        {children}
+      </div>
       {note ? <p className="mt-1 text-xs text-ink-3">{note}</p> : null}
-      <div id={`${id}-table`} hidden={!open} className="mt-3 max-h-80 overflow-auto">
+      <div id={`${id}-table`} hidden={!open} className="print:hidden mt-3 max-h-80 overflow-auto">
         {open ? <FigureTable data={data} title={title} most={ROWS_SHOWN} /> : null}
       </div>
       <noscript>

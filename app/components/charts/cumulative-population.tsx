@@ -1,6 +1,6 @@
 import { formatCount, formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
 import { type Cumulative, withinWindow } from "~/lib/workbench/cumulative";
-import { shareWords } from "~/lib/workbench/findings";
+import { shareFigure } from "~/lib/workbench/findings";
 import { ChartFrame } from "./chart-frame";
 import { ChartText, Plot, usePlot } from "./plot";
 
@@ -35,7 +35,7 @@ export function CumulativePopulation({
           .map((r) => `${formatPercent(r.asked)} within ${withUnit(formatEnergy(r.energy), "kcal/mol")}`)
           .join(
             ", ",
-          )}${windowKcal === null ? "" : `; the window of ${formatEnergy(windowKcal)} holds ${shareWords(within.share)}`}`}
+          )}${windowKcal === null ? "" : `; the window of ${formatEnergy(windowKcal)} holds ${shareFigure(within.share)}`}`}
         x={{ title: "window, kcal/mol", low: -0.02 * top, high: top }}
         y={{ title: "population within the window, %", low: 0, high: 102, ticks: [0, 25, 50, 75, 100] }}
         points={shown.map((step) => ({

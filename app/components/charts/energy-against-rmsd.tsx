@@ -1,6 +1,7 @@
 import { depthColour } from "~/components/ui/depth-strip";
 import { formatEnergy, formatPopulation, formatRmsd, plural, withUnit } from "~/lib/format";
 import type { ConformerRow } from "~/lib/workbench/conformers";
+import { placeNames } from "~/lib/workbench/place-labels";
 import { ChartFrame } from "./chart-frame";
 import { ChartText, type Choose, Plot, usePlot } from "./plot";
 
@@ -87,13 +88,11 @@ export function EnergyAgainstRmsd({
 function PointsLayer({ drawn, selected }: { drawn: readonly Point[]; selected: ReadonlySet<number> }) {
   const plot = usePlot();
   if (!plot) return null;
-  // The most populated are named, but none on top of another's name.
-  const labels: { name: string; x: number; y: number }[] = [];
-  for (const { row, rmsd, energy } of drawn.slice(-NAMED).reverse()) {
-    const at = { name: row.name, x: plot.x(rmsd), y: plot.y(energy) };
-    if (labels.every((label) => Math.abs(label.x - at.x) > 26 || Math.abs(label.y - at.y) > 14))
-      labels.push(at);
-  }
+  const named = drawn
+    .slice(-NAMED)
+    .reverse()
+    .map(({ row, rmsd, energy }) => ({ name: row.name, x: plot.x(rmsd), y: plot.y(energy) }));
+  const labels = placeNames(named, { ...plot, right: plot.right + 8 });
   const radius = drawn.length > 300 ? 3 : 4.5;
   return (
     <g>
@@ -108,9 +107,9 @@ function PointsLayer({ drawn, selected }: { drawn: readonly Point[]; selected: R
           strokeWidth={selected.has(row.frame) ? 2.5 : 1}
         />
       ))}
-      {labels.map(({ name, x, y }) => (
-        <ChartText key={name} x={x + 8} y={y - 6} tone="ink" halo>
-          {name}
+      {labels.map(({ text, x, y, end }) => (
+        <ChartText key={text} x={x} y={y} end={end} tone="ink" halo>
+          {text}
         </ChartText>
       ))}
     </g>

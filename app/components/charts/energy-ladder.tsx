@@ -2,7 +2,7 @@ import { depthColour } from "~/components/ui/depth-strip";
 import { fixed, formatEnergy, formatPopulation, plural, withUnit } from "~/lib/format";
 import { thermalEnergyKcal } from "~/lib/units";
 import type { ConformerRow, Outside } from "~/lib/workbench/conformers";
-import { shareWords, thermalLabel } from "~/lib/workbench/findings";
+import { shareFigure, thermalLabel } from "~/lib/workbench/findings";
 import { type Ladder, mergeLabels, type PlacedLabel } from "~/lib/workbench/ladder";
 import { ChartFrame } from "./chart-frame";
 import { ChartText, type Choose, Plot, usePlot } from "./plot";
@@ -33,7 +33,7 @@ export function EnergyLadder({
   const widest = 100 * ladder.widest * 1.12;
   const notes = [
     ladder.above.count > 0
-      ? `${plural(ladder.above.count, "conformer")} above ${withUnit(formatEnergy(ladder.top), "kcal/mol")} not drawn, ${shareWords(ladder.above.share)}.`
+      ? `${plural(ladder.above.count, "conformer")} above ${withUnit(formatEnergy(ladder.top), "kcal/mol")} not drawn, ${shareFigure(ladder.above.share)}.`
       : null,
     ladder.covered > 0
       ? `${plural(ladder.covered, "rung")} lie behind a more populated one of the same height.`
@@ -209,7 +209,7 @@ function WindowBand({
       </ChartText>
       <ChartText x={plot.right - 8} y={Math.max(plot.top + 12, (plot.top + y) / 2 + 4)} end>
         outside: {plural(outside.count, "conformer")}
-        {outside.count > 0 ? `, ${shareWords(outside.share)}` : ""}
+        {outside.count > 0 ? `, ${shareFigure(outside.share)}` : ""}
       </ChartText>
     </>
   );

@@ -1,16 +1,20 @@
 import { depthColour } from "~/components/ui/depth-strip";
-import { fixed, formatPercent, plural } from "~/lib/format";
+import { fixed, formatPercent, plural, withUnit } from "~/lib/format";
 import type { MeasureHistogram } from "~/lib/measure/histogram";
 import { MEASURE_UNIT, type MeasureKind } from "~/lib/measure/measure";
 import type { ConformerRow } from "~/lib/workbench/conformers";
-import { joinWords, shareWords } from "~/lib/workbench/findings";
+import { joinWords, shareFigure } from "~/lib/workbench/findings";
 import { ChartFrame } from "./chart-frame";
 import { ChartText, type Choose, Plot, usePlot } from "./plot";
 
 /** Parts thinner than this many pixels are drawn together, in the palest tint. */
 const THINNEST = 0.8;
 const NAMED = 3;
-const TORSION_TICKS = [-180, -120, -60, 0, 60, 120, 180];
+/** Bars whose conformer is named: the peaks, tallest first, as far as names have room. */
+const NAMED_PEAKS = 8;
+const NAME_WIDTH_PX = 30;
+/** Every 60° that lies in the range. */
+const TORSION_TICKS = [-180, -120, -60, 0, 60, 120, 180, 240, 300, 360];
 
 /** How a measured quantity spreads over the ensemble, by population; each conformer in its own tint. */
 export function MeasureDistribution({
@@ -63,14 +67,16 @@ export function MeasureDistribution({
           title: `${kind}, ${unit}`,
           low: first.from - 0.01 * width,
           high: last.to + 0.01 * width,
-          ...(kind === "torsion" ? { ticks: TORSION_TICKS } : {}),
+          ...(kind === "torsion"
+            ? { ticks: TORSION_TICKS.filter((tick) => tick >= first.from && tick <= last.to) }
+            : {}),
         }}
         y={{ title: `population, % per ${per}`, low: 0, high: 108 * highest }}
         points={filled.map((bin) => ({
           x: (bin.from + bin.to) / 2,
           y: 100 * bin.share,
           frame: rows[bin.parts[0]?.index ?? -1]?.frame,
-          label: `${fixed(bin.from, kind === "distance" ? 2 : 0)} to ${fixed(bin.to, kind === "distance" ? 2 : 0)} ${unit}: ${formatPercent(bin.share, 1)}, ${plural(bin.parts.length, "conformer")}, first ${words(bin.parts)}`,
+          label: `${fixed(bin.from, kind === "distance" ? 2 : 1)} to ${withUnit(fixed(bin.to, kind === "distance" ? 2 : 1), unit)}: ${formatPercent(bin.share, 1)}, ${plural(bin.parts.length, "conformer")}, first ${words(bin.parts)}`,
         }))}
         onChoose={onChoose}
       >
@@ -82,17 +88,21 @@ export function MeasureDistribution({
 
 function undefinedNote(share: number): string | null {
   return share > 0
-    ? `Undefined in ${shareWords(share)} of the ensemble: the atoms lie on one line there.`
+    ? `Undefined in ${shareFigure(share)} of the ensemble: the atoms lie on one line there.`
     : null;
 }
 
 function BarsLayer({ histogram, rows }: { histogram: MeasureHistogram; rows: readonly ConformerRow[] }) {
   const plot = usePlot();
   if (!plot) return null;
-  // The tallest bars are named, but none beside a bar that is.
-  const tallest: typeof histogram.bins = [];
-  for (const bin of [...histogram.bins].sort((a, b) => b.share - a.share).slice(0, NAMED)) {
-    if (tallest.every((other) => Math.abs(plot.x(other.from) - plot.x(bin.from)) > 28)) tallest.push(bin);
+  const { bins } = histogram;
+  const share = (k: number) => bins[k]?.share ?? 0;
+  const peaks = bins.filter((bin, k) => bin.share >= share(k - 1) && bin.share >= share(k + 1));
+  const tallest: typeof bins = [];
+  for (const bin of peaks.sort((a, b) => b.share - a.share).slice(0, NAMED_PEAKS)) {
+    const free = (other: (typeof bins)[number]) =>
+      Math.abs(plot.x(other.from) - plot.x(bin.from)) > NAME_WIDTH_PX;
+    if (tallest.every(free)) tallest.push(bin);
   }
   return (
     <g>

@@ -42,6 +42,8 @@ const MARGIN = { top: 28, right: 12, bottom: 0, left: 0 };
 const FOOT = 44;
 /** Pointer farther from every point than this reads nothing. */
 const REACH = 28;
+/** A point of 4.5 px, the gap of 2 px, and half the ring of 2 px. */
+const FOCUS_RADIUS = 7.5;
 
 /**
  * Frame of every chart: axes with round values, titles level with them, points that can be walked by key and read off
@@ -316,10 +318,26 @@ function PointLayer({
         role={onChoose && point.frame !== undefined ? "button" : "img"}
         aria-label={point.label}
         aria-describedby={describedBy}
-        className="outline-none [&:focus-visible>circle]:opacity-100"
+        className="group outline-none"
         onFocus={() => onActive(index)}
         onBlur={() => onActive(null)}
       >
+        {/* The ring of the focus: 2 px, 2 px off the point, on a rim of the ground so that it stands out of a crowd. */}
+        {[
+          { colour: "var(--color-paper)", width: 6 },
+          { colour: "var(--color-mark)", width: 2 },
+        ].map(({ colour, width }) => (
+          <circle
+            key={width}
+            cx={plot.x(point.x)}
+            cy={plot.y(point.y)}
+            r={FOCUS_RADIUS}
+            fill="none"
+            stroke={colour}
+            strokeWidth={width}
+            className="pointer-events-none opacity-0 group-focus-visible:opacity-100"
+          />
+        ))}
         <circle
           cx={plot.x(point.x)}
           cy={plot.y(point.y)}
@@ -327,7 +345,7 @@ function PointLayer({
           fill="none"
           stroke="var(--color-mark)"
           strokeWidth={2}
-          className={`pointer-events-none ${active === null ? "opacity-0" : ""}`}
+          className={`pointer-events-none group-focus-visible:opacity-0 ${active === null ? "opacity-0" : ""}`}
         />
       </g>
     </g>

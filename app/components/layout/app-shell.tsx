@@ -31,7 +31,7 @@ export function AppShell({
     <div className="flex min-h-dvh flex-col">
       <a
         href="#content"
-        className="fixed top-2 left-2 z-50 -translate-y-16 rounded-md bg-action px-4 py-2 text-on-action focus:translate-y-0"
+        className="fixed top-2 left-2 z-50 -translate-y-16 print:hidden rounded-md bg-action px-4 py-2 text-on-action focus:translate-y-0"
       >
         To the content
       </a>
@@ -50,7 +50,7 @@ function Bar() {
   const { user } = useShellData();
   const { pathname } = useLocation();
   return (
-    <header className="h-13 border-b border-rule bg-paper print:border-0">
+    <header className="h-13 border-b border-rule bg-paper print:hidden">
       <div className="flex h-full items-center gap-4 px-4 sm:px-6 xl:px-8">
         <Brand short={crumbs.length > 0} />
         {crumbs.length > 0 ? <Breadcrumbs crumbs={crumbs} /> : <References pathname={pathname} />}
@@ -102,14 +102,14 @@ function Foot({ recipe, results }: { recipe?: ReactNode; results: boolean }) {
           {results ? (
             <p>
               {CAUTION}{" "}
-              <Link className={linkClass} to={`${href("/methods")}#caution`}>
+              <Link className={`${linkClass} print:hidden`} to={`${href("/methods")}#caution`}>
                 In full
               </Link>
             </p>
           ) : null}
           {!recipe && !results ? <p>Lowlying keeps your original bytes, and gives them back.</p> : null}
         </div>
-        <p className="-my-1 flex flex-wrap items-center gap-x-3 [&>a]:py-1 pointer-coarse:[&>a]:py-3">
+        <p className="-my-1 flex flex-wrap items-center gap-x-3 print:[&>a]:hidden [&>a]:py-1 pointer-coarse:[&>a]:py-3">
           <Link className={linkClass} to={href("/methods")}>
             Methods and sources
           </Link>

@@ -15,7 +15,7 @@ interface Look {
 }
 
 const BASE =
-  "inline-flex items-center justify-center gap-2 rounded-md border font-medium whitespace-nowrap no-underline " +
+  "inline-flex items-center justify-center gap-2 rounded-md border font-medium whitespace-nowrap no-underline print:hidden " +
   "transition-colors duration-(--duration-quick) disabled:border-rule-2 disabled:bg-transparent disabled:text-ink-off " +
   "aria-disabled:border-rule-2 aria-disabled:bg-transparent aria-disabled:text-ink-off [&_svg]:size-4 [&_svg]:shrink-0";
 
@@ -25,6 +25,10 @@ const KINDS: Record<ButtonKind, string> = {
   quiet: "border-transparent text-link hover:bg-sunk",
   stop: "border-danger-edge bg-sheet text-danger hover:bg-danger-ground",
 };
+
+/** A button that only script answers is not shown where there is none. */
+export const scriptOnly = (type: ComponentProps<"button">["type"]) =>
+  type === "button" ? "noscript:hidden" : "";
 
 /** The classes of a button, for an element that cannot be one of the components below (a label, a summary). */
 export function buttonClass({ kind = "plain", size = "md", wide = false }: Look = {}): string {
@@ -48,7 +52,11 @@ export function Button({
   ...rest
 }: Look & ComponentProps<"button">) {
   return (
-    <button type={type} className={`${buttonClass({ kind, size, wide })} ${className}`} {...rest}>
+    <button
+      type={type}
+      className={`${buttonClass({ kind, size, wide })} ${scriptOnly(type)} ${className}`}
+      {...rest}
+    >
       {icon}
       {children}
     </button>
@@ -100,7 +108,7 @@ export function IconButton({
       type={type}
       aria-label={label}
       title={label}
-      className={`inline-grid size-7 shrink-0 place-items-center rounded-md border border-transparent text-ink-2 hover:bg-sunk hover:text-ink aria-pressed:border-edge aria-pressed:text-ink pointer-coarse:size-11 [&_svg]:size-4 ${className}`}
+      className={`${scriptOnly(type)} inline-grid size-7 shrink-0 place-items-center print:hidden rounded-md border border-transparent text-ink-2 hover:bg-sunk hover:text-ink aria-pressed:border-edge aria-pressed:text-ink pointer-coarse:size-11 [&_svg]:size-4 ${className}`}
       {...rest}
     >
       {children}

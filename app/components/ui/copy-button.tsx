@@ -1,6 +1,6 @@
 import { type ReactNode, useState } from "react";
 import { Button, type ButtonKind, type ButtonSize } from "./button";
-import { linkClass } from "./text-link";
+import { TextButton } from "./text-link";
 
 /** Puts `text` on the clipboard and says that it did, in place and for screen readers. */
 export function CopyButton({
@@ -35,9 +35,7 @@ export function CopyButton({
           {words}
         </Button>
       ) : (
-        <button type="button" className={linkClass} {...shared}>
-          {words}
-        </button>
+        <TextButton {...shared}>{words}</TextButton>
       )}
       <span role="status" className="sr-only">
         {state === "copied" ? "Copied" : ""}

@@ -7,7 +7,7 @@ export function SectionHead({ title, aside, id }: { title: ReactNode; aside?: Re
       <h2 id={id} className="text-lg font-semibold tracking-title sm:text-xl">
         {title}
       </h2>
-      {aside ? <span className="text-xs">{aside}</span> : null}
+      {aside ? <span className="text-xs print:hidden">{aside}</span> : null}
     </div>
   );
 }

@@ -26,7 +26,7 @@ export function KeyFigure({
 }) {
   const colour = tone === "held" ? "text-held" : tone === "remark" ? "text-remark" : "text-ink";
   return (
-    <div>
+    <div data-figure="">
       <dt className="text-xs font-medium text-ink-3">{label}</dt>
       <dd className={`figures text-lg font-medium tracking-title whitespace-nowrap sm:text-xl ${colour}`}>
         {source ? <Provenance {...source}>{value}</Provenance> : value}

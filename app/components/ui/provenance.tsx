@@ -25,6 +25,8 @@ export interface Source {
 }
 
 const HOVER_MS = 300;
+/** Kept free around a popover; above it the rail, which stays in sight. */
+const ROOM = { top: 84, right: 16, bottom: 16, left: 16 } as const;
 /** One popover at a time: opening one closes the other. */
 let closeOpen: (() => void) | null = null;
 
@@ -34,6 +36,12 @@ export function Provenance({ children, ...source }: Source & { children: ReactNo
   const timer = useRef<ReturnType<typeof setTimeout> | undefined>(undefined);
   const trigger = useRef<HTMLButtonElement>(null);
   const content = useRef<HTMLDivElement>(null);
+  // What the popover stands beside: the figure with its label, so that it covers neither.
+  const anchor = useRef<{ getBoundingClientRect(): DOMRect }>({
+    getBoundingClientRect: () =>
+      (trigger.current?.closest("[data-figure]") ?? trigger.current)?.getBoundingClientRect() ??
+      new DOMRect(),
+  });
   // Focus that comes back on closing must not open it again.
   const returning = useRef(false);
   const byClick = useRef(false);
@@ -70,11 +78,13 @@ export function Provenance({ children, ...source }: Source & { children: ReactNo
         else hide();
       }}
     >
+      <Popover.Anchor virtualRef={anchor} />
       <Popover.Trigger asChild>
         <button
           ref={trigger}
           type="button"
-          className="underline decoration-rule-2 decoration-dotted decoration-[1.5px] underline-offset-[5px] hover:decoration-ink-3"
+          aria-label={`${source.name}: ${source.value}${source.unit ? ` ${source.unit}` : ""}. Where this number comes from`}
+          className="noscript:no-underline print:no-underline underline decoration-rule-2 decoration-dotted decoration-[1.5px] underline-offset-[5px] hover:decoration-ink-3"
           onPointerEnter={(event) => later(event, show)}
           onPointerLeave={leave}
           onFocus={(event) => {
@@ -100,10 +110,10 @@ export function Provenance({ children, ...source }: Source & { children: ReactNo
           ref={content}
           tabIndex={-1}
           sideOffset={8}
-          collisionPadding={16}
+          collisionPadding={ROOM}
           align="start"
           aria-label={`Where this number comes from: ${source.name}`}
-          className="figures z-40 w-96 max-w-[calc(100vw-2rem)] rounded-md border border-rule-2 bg-sheet p-4 text-sm text-ink shadow-float"
+          className="figures z-40 max-h-(--radix-popover-content-available-height) w-96 max-w-[calc(100vw-2rem)] overflow-y-auto rounded-md border border-rule-2 bg-sheet p-4 text-sm text-ink shadow-float"
           onPointerEnter={() => clearTimeout(timer.current)}
           onPointerLeave={leave}
           onOpenAutoFocus={(event) => {

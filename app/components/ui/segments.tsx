@@ -34,7 +34,10 @@ export function Segments<V extends string>({
   const id = useId();
   const height = size === "md" ? "h-9 px-3 text-sm" : "h-7 px-3 text-xs";
   return (
-    <fieldset className={`min-w-0 ${className}`} aria-describedby={help ? `${id}-help` : undefined}>
+    <fieldset
+      className={`min-w-0 print:hidden ${className}`}
+      aria-describedby={help ? `${id}-help` : undefined}
+    >
       <legend className={hideLabel ? "sr-only" : `mb-2 ${labelClass}`}>{label}</legend>
       <span className="inline-flex max-w-full rounded-md border border-edge bg-sheet">
         {options.map((option) => (

@@ -16,7 +16,7 @@ interface HeadProps {
   sort?: SortDirection | null;
   /** Sorts in place. */
   onSort?: () => void;
-  /** Sorts by address: works without script. */
+  /** Sorts by address: works without script. With `onSort` that is done where there is script. */
   sortTo?: string;
   className?: string;
   children?: ReactNode;
@@ -42,7 +42,7 @@ export function Th({ unit, align = "left", sort, onSort, sortTo, className = "",
       )}
     </>
   );
-  const actClass = `-my-1 inline-block rounded-sm py-1 hover:text-ink pointer-coarse:-my-3 pointer-coarse:py-3 ${ALIGN[align]}`;
+  const actClass = `-my-1 inline-block rounded-sm py-1 text-inherit no-underline hover:text-ink pointer-coarse:-my-3 pointer-coarse:py-3 ${ALIGN[align]}`;
   return (
     <th
       scope="col"
@@ -52,7 +52,16 @@ export function Th({ unit, align = "left", sort, onSort, sortTo, className = "",
       className={`border-t border-b border-t-rule border-b-rule-2 px-3 py-2 align-bottom text-xs font-medium whitespace-nowrap max-sm:px-2 ${sorted ? "text-ink" : "text-ink-3"} ${ALIGN[align]} ${className}`}
     >
       {sortTo !== undefined ? (
-        <Link to={sortTo} preventScrollReset replace className={actClass}>
+        <Link
+          to={sortTo}
+          preventScrollReset
+          onClick={(event) => {
+            if (!onSort || event.ctrlKey || event.metaKey || event.shiftKey || event.altKey) return;
+            event.preventDefault();
+            onSort();
+          }}
+          className={actClass}
+        >
           {words}
         </Link>
       ) : onSort ? (

@@ -1,13 +1,16 @@
 import { useVirtualizer } from "@tanstack/react-virtual";
 import { ChevronDown, ChevronRight, Copy, Download } from "lucide-react";
 import { type MouseEvent, memo, useCallback, useId, useMemo, useRef, useState } from "react";
-import { href } from "react-router";
+import { flushSync } from "react-dom";
+import { href, useLocation } from "react-router";
 import { Button, buttonClass, IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
+import { Skeleton } from "~/components/ui/skeleton";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
-import { linkClass } from "~/components/ui/text-link";
+import { TextButton } from "~/components/ui/text-link";
 import { showToast } from "~/components/ui/toast";
 import { setHovered } from "~/hooks/use-hovered";
+import { usePrinting } from "~/hooks/use-printing";
 import {
   ABSENT,
   fixed,
@@ -20,6 +23,7 @@ import {
   plural,
 } from "~/lib/format";
 import type { MeasureKind } from "~/lib/measure/measure";
+import { searchOf, writeState } from "~/lib/url-state";
 import type { ConformerRow } from "~/lib/workbench/conformers";
 import { type SortColumn, sortRows } from "~/lib/workbench/sort-rows";
 import { toTsv } from "~/lib/workbench/tsv";
@@ -29,6 +33,8 @@ import { useWorkbench } from "./workbench-context";
 
 /** Rows before "show all": what matters is among them, and the page stays short. */
 const FIRST_ROWS = 12;
+/** On paper; the last row counts what is left. */
+const PRINTED_ROWS = 500;
 const ROW_PX = 36;
 const ROW_PX_TOUCH = 44;
 
@@ -42,7 +48,7 @@ export interface MeasureColumn {
 
 /** The distinct set: energies, populations, copies, what was found, and how far each lies from the selected one. */
 export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
-  const { rows, sift, state, change, selected, select, column, reference, level } = useWorkbench();
+  const { rows, sift, state, change, selected, select, column, reference, level, measured } = useWorkbench();
   const [all, setAll] = useState(false);
   const id = useId();
   const rmsd = useMemo(
@@ -55,7 +61,9 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
   );
   const order = useMemo(() => sorted.map((row) => row.frame), [sorted]);
   const widest = useMemo(() => rows.reduce((most, row) => Math.max(most, row.population ?? 0), 0), [rows]);
-  const shown = all ? sorted.length : Math.min(FIRST_ROWS, sorted.length);
+  const printing = usePrinting();
+  const most = printing ? PRINTED_ROWS : all ? sorted.length : FIRST_ROWS;
+  const shown = Math.min(most, sorted.length);
   const rest = useMemo(() => sorted.slice(shown), [sorted, shown]);
   const chosen = useMemo(() => new Set(selected), [selected]);
 
@@ -71,7 +79,8 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
   });
   const scrollTo = useCallback(
     (index: number) => {
-      if (index >= FIRST_ROWS) setAll(true);
+      // At once: the list has to be long enough before it can be scrolled there.
+      if (index >= FIRST_ROWS) flushSync(() => setAll(true));
       virtual.scrollToIndex(index, { align: "auto" });
     },
     [virtual],
@@ -84,14 +93,18 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
     [order, select],
   );
   const { active, setActive, body, onKeyDown } = useRowFocus({ count: sorted.length, scrollTo, onChoose });
-  const items = virtual.getVirtualItems();
-  const before = items[0]?.start ?? 0;
-  const after = virtual.getTotalSize() - (items.at(-1)?.end ?? 0);
+  const virtualItems = virtual.getVirtualItems();
+  const items = printing
+    ? sorted.slice(0, shown).map((_, index) => index)
+    : virtualItems.map((item) => item.index);
+  const before = printing ? 0 : (virtualItems[0]?.start ?? 0);
+  const after = printing ? 0 : virtual.getTotalSize() - (virtualItems.at(-1)?.end ?? 0);
 
-  const sortBy = (name: SortColumn) => () => {
+  const { search } = useLocation();
+  const nextSort = (name: SortColumn) => {
     const now = state.sort?.column === name ? state.sort : name === "energy" && !state.sort ? NATURAL : null;
     const first = name === "population" || name === "found";
-    change({ sort: { column: name, descending: now ? !now.descending : first } }, { replace: true });
+    return { column: name, descending: now ? !now.descending : first };
   };
   const direction = (name: SortColumn) => {
     const now = state.sort ?? NATURAL;
@@ -135,10 +148,12 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
       {/* The box scrolls only when all rows are asked for; before, the page does. */}
       <div
         ref={box}
-        className={`relative -mx-4 px-4 sm:mx-0 sm:px-0 ${all ? "max-h-[min(70vh,44rem)] overflow-y-auto" : ""}`}
+        className={`relative -mx-4 px-4 sm:mx-0 sm:px-0 ${all && !printing ? "max-h-[min(70vh,44rem)] overflow-y-auto" : ""}`}
       >
         <Table
           role="grid"
+          tabIndex={-1}
+          className="outline-none"
           aria-labelledby={id}
           aria-rowcount={sorted.length + 1}
           aria-multiselectable="true"
@@ -152,7 +167,10 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
                   unit={head.unit}
                   align={head.align}
                   sort={direction(head.name)}
-                  onSort={sortBy(head.name)}
+                  onSort={() => change({ sort: nextSort(head.name) })}
+                  sortTo={searchOf(
+                    writeState({ ...state, sort: nextSort(head.name) }, new URLSearchParams(search)),
+                  )}
                   className={head.className}
                 >
                   {head.label}
@@ -162,19 +180,20 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
           </thead>
           <tbody ref={body}>
             {before > 0 ? <Spacer height={before} /> : null}
-            {items.map((item) => {
-              const row = sorted[item.index];
+            {items.map((index) => {
+              const row = sorted[index];
               return row ? (
                 <ConformerLine
-                  key={item.key}
+                  key={row.frame}
                   row={row}
-                  index={item.index}
+                  index={index}
                   widest={widest}
                   rmsd={row.index === column?.reference ? null : (rmsd?.[row.index] ?? undefined)}
+                  awaited={measured.has(row.frame)}
                   bound={column?.exact[row.index] === 0 && (rmsd?.[row.index] ?? undefined) !== undefined}
                   measure={measure}
                   selected={chosen.has(row.frame)}
-                  tabbed={item.index === active}
+                  tabbed={index === active}
                   onFocus={setActive}
                   onChoose={onChoose}
                 />
@@ -188,10 +207,13 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
         </Table>
       </div>
       {sorted.length > FIRST_ROWS ? (
+        <p className="mt-2 hidden text-xs text-ink-3 noscript:block">All of them stand in the CSV.</p>
+      ) : null}
+      {sorted.length > FIRST_ROWS ? (
         <p className="mt-2 text-xs">
-          <button type="button" className={linkClass} onClick={() => setAll(!all)}>
+          <TextButton onClick={() => setAll(!all)}>
             {all ? `Show the first ${FIRST_ROWS} only` : `Show all ${formatCount(sorted.length)}`}
-          </button>
+          </TextButton>
         </p>
       ) : null}
     </section>
@@ -267,6 +289,7 @@ const ConformerLine = memo(function ConformerLine({
   index,
   widest,
   rmsd,
+  awaited,
   bound,
   measure,
   selected,
@@ -279,6 +302,8 @@ const ConformerLine = memo(function ConformerLine({
   widest: number;
   /** Null for the reference itself, undefined while it is not known. */
   rmsd: number | null | undefined;
+  /** It will be known. */
+  awaited: boolean;
   bound: boolean;
   measure: MeasureColumn | null;
   selected: boolean;
@@ -292,8 +317,7 @@ const ConformerLine = memo(function ConformerLine({
     onChoose(index, event.shiftKey ? "extend" : event.ctrlKey || event.metaKey ? "add" : "only");
   };
   const value = measure?.values[row.index] ?? null;
-  const rmsdText =
-    rmsd === null ? ABSENT : rmsd === undefined ? "" : `${bound ? "to " : ""}${formatRmsd(rmsd)}`;
+  const rmsdText = rmsd === null || rmsd === undefined ? ABSENT : `${bound ? "to " : ""}${formatRmsd(rmsd)}`;
   const measureText =
     measure === null ? "" : measure.kind === "distance" ? formatDistance(value) : formatAngle(value);
   return (
@@ -303,7 +327,7 @@ const ConformerLine = memo(function ConformerLine({
         aria-rowindex={index + 2}
         selected={selected}
         tabIndex={tabbed ? 0 : -1}
-        className={`cursor-pointer select-none hover:bg-sunk ${row.outside ? "text-ink-2" : ""} ${selected ? "hover:bg-mark-wash" : ""}`}
+        className={`scroll-mt-14 cursor-pointer select-none hover:bg-sunk ${row.outside ? "text-ink-2" : ""} ${selected ? "hover:bg-mark-wash" : ""}`}
         onFocus={() => onFocus(index)}
         onClick={click}
         onMouseDown={(event) => event.shiftKey && event.preventDefault()}
@@ -347,7 +371,7 @@ const ConformerLine = memo(function ConformerLine({
           {row.found}
         </Td>
         <Td align="right" className={WIDE}>
-          {rmsdText}
+          {rmsd === undefined && awaited ? <Skeleton className="ml-auto h-3 w-9" /> : rmsdText}
         </Td>
         {measure ? (
           <Td align="right" className={WIDE}>

@@ -7,15 +7,15 @@ import { Note } from "~/components/ui/note";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { TextButton, TextLink } from "~/components/ui/text-link";
 import { useNewSift } from "~/hooks/use-sift";
-import { fixed, formatPercent, formatRmsd, plural, withUnit } from "~/lib/format";
+import { capital, fixed, formatPercent, formatRmsd, plural, withUnit } from "~/lib/format";
 import type { SiftRequest } from "~/lib/recipe/recipe";
 import { distinctFinding, joinWords, nearMirror } from "~/lib/workbench/findings";
-import { requestOf } from "~/lib/workbench/recipe-words";
+import { recipeLine, requestOf } from "~/lib/workbench/recipe-words";
 import { DistinctTable } from "./distinct-table";
 import { FindFrame } from "./find-frame";
-import { AroundTolerance, NearestPairs } from "./near-cut";
 import { OutdatedNote, SectionState } from "./section-state";
 import { SiftSettings } from "./sift-settings";
+import { ToleranceBlock } from "./tolerance-block";
 import { useWorkbench } from "./workbench-context";
 
 /** Reducing the accepted frames to the shapes that differ, by a recipe that can be moved. */
@@ -26,6 +26,8 @@ export function DistinctSetSection() {
   const [before, setBefore] = useState<{ id: string; kept: number; tolerance: number } | null>(null);
   // Settings that were cancelled go back to those of the set that is shown.
   const [cancelled, setCancelled] = useState(0);
+  // The settings as they stand, ahead of the set that is shown.
+  const [draft, setDraft] = useState<SiftRequest | null>(null);
   const latest = useRef(change);
   latest.current = change;
   const named = useRef<Promise<void> | null>(null);
@@ -86,27 +88,39 @@ export function DistinctSetSection() {
             </p>
           ) : null}
           <OutdatedNote onAgain={() => onAsk(request, true)} busy={asked !== null} />
-          <SiftSettings key={cancelled} ensemble={ensemble} request={request} onAsk={onAsk} />
+          <SiftSettings
+            key={cancelled}
+            ensemble={ensemble}
+            request={request}
+            words={`${capital(recipeLine(sift.recipe, null))}.`}
+            onDraft={setDraft}
+            onAsk={onAsk}
+          />
           <SiftLine
             asked={asked}
             error={error}
             onCancel={() => {
               cancel();
               setCancelled(cancelled + 1);
+              setDraft(null);
             }}
           />
           {ensemble.mayCompute ? null : (
-            <p className="mt-3 text-xs text-ink-3">
+            <p className="mt-3 text-xs text-ink-3 noscript:hidden print:hidden">
               {ensemble.role === "guest"
                 ? "This is an example: the settings show how it was computed. In a team of your own they can be moved."
                 : "You read this team’s work: an analyst or an owner can move these settings."}
             </p>
           )}
           <MirrorWarning />
-          <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
-            <AroundTolerance recipe={sift.recipe} />
-            <NearestPairs />
-          </div>
+          <ToleranceBlock
+            draft={draft}
+            onTake={
+              ensemble.mayCompute
+                ? (rmsdTolerance) => onAsk({ ...(draft ?? request), rmsdTolerance }, true)
+                : null
+            }
+          />
           <FindFrame />
           <DistinctTable
             tools={

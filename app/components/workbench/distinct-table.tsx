@@ -1,12 +1,14 @@
 import { useVirtualizer } from "@tanstack/react-virtual";
 import { ChevronDown, ChevronRight } from "lucide-react";
 import { type MouseEvent, type ReactNode, useCallback, useId, useMemo, useRef, useState } from "react";
+import { flushSync } from "react-dom";
 import { DegeneracyBadge } from "~/components/ui/badge";
 import { IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
-import { linkClass, TextButton } from "~/components/ui/text-link";
+import { TextButton } from "~/components/ui/text-link";
 import { setHovered } from "~/hooks/use-hovered";
+import { usePrinting } from "~/hooks/use-printing";
 import { formatCount, formatEnergy, formatRmsd, plural } from "~/lib/format";
 import type { DroppedFrame } from "~/lib/recipe/result";
 import type { ConformerRow } from "~/lib/workbench/conformers";
@@ -15,6 +17,8 @@ import { useRowFocus } from "./table-grid";
 import { useWorkbench } from "./workbench-context";
 
 const FIRST_ROWS = 12;
+/** On paper; a last row counts what is left. */
+const PRINTED_ROWS = 500;
 const FIRST_REPEATS = 7;
 const MID = "max-sm:hidden";
 const NO_REPEATS: DroppedFrame[] = [];
@@ -29,7 +33,8 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
   const order = useMemo(() => rows.map((row) => row.frame), [rows]);
   const chosen = new Set(selected);
   const most = rows.reduce((found, row) => Math.max(found, row.found), 1);
-  const shown = all ? rows.length : Math.min(FIRST_ROWS, rows.length);
+  const printing = usePrinting();
+  const shown = Math.min(printing ? PRINTED_ROWS : all ? rows.length : FIRST_ROWS, rows.length);
   const box = useRef<HTMLDivElement>(null);
   const virtual = useVirtualizer({
     count: shown,
@@ -41,7 +46,8 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
   });
   const scrollTo = useCallback(
     (index: number) => {
-      if (index >= FIRST_ROWS) setAll(true);
+      // At once: the list has to be long enough before it can be scrolled there.
+      if (index >= FIRST_ROWS) flushSync(() => setAll(true));
       virtual.scrollToIndex(index, { align: "auto" });
     },
     [virtual],
@@ -57,7 +63,7 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
   };
   const { active, setActive, body, onKeyDown } = useRowFocus({ count: rows.length, scrollTo, onChoose });
   // Opened rows are taller than assumed; while some are open all shown rows stand in the page.
-  const virtualised = all && open.size === 0;
+  const virtualised = all && open.size === 0 && !printing;
   const items = virtualised
     ? virtual.getVirtualItems().map((item) => item.index)
     : Array.from({ length: shown }, (_, index) => index);
@@ -78,9 +84,14 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
       >
         {tools}
       </BlockHead>
-      <div ref={box} className={`relative ${all ? "max-h-[min(70vh,44rem)] overflow-y-auto" : ""}`}>
+      <div
+        ref={box}
+        className={`relative ${all && !printing ? "max-h-[min(70vh,44rem)] overflow-y-auto" : ""}`}
+      >
         <Table
           role="grid"
+          tabIndex={-1}
+          className="outline-none"
           aria-labelledby={id}
           aria-rowcount={rows.length + 1}
           aria-multiselectable="true"
@@ -143,9 +154,9 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
       </div>
       {rows.length > FIRST_ROWS ? (
         <p className="mt-2 text-xs">
-          <button type="button" className={linkClass} onClick={() => setAll(!all)}>
+          <TextButton onClick={() => setAll(!all)}>
             {all ? `Show the first ${FIRST_ROWS} only` : `Show all ${formatCount(rows.length)}`}
-          </button>
+          </TextButton>
         </p>
       ) : null}
     </section>
@@ -195,7 +206,7 @@ function KeptRow({
         aria-rowindex={index + 2}
         selected={selected}
         tabIndex={tabbed ? 0 : -1}
-        className={`cursor-pointer select-none hover:bg-sunk ${selected ? "hover:bg-mark-wash" : ""}`}
+        className={`scroll-mt-14 cursor-pointer select-none hover:bg-sunk ${selected ? "hover:bg-mark-wash" : ""}`}
         onFocus={onFocus}
         onClick={click}
         onMouseDown={(event) => event.shiftKey && event.preventDefault()}

@@ -24,7 +24,7 @@ export function FindFrame() {
   const role = asked === null ? undefined : roles.get(asked);
   const over = role?.kind === "repeat" ? [role.repeats, asked ?? 0] : asked === null ? [] : [asked];
   return (
-    <div className="mt-6">
+    <div className="mt-6 noscript:hidden print:hidden">
       <form onSubmit={find} className="flex flex-wrap items-end gap-3">
         <div>
           <label htmlFor={id} className={`mb-2 block ${labelClass}`}>

@@ -3,7 +3,7 @@ import { LevelName } from "~/components/ui/level-marker";
 import { NumberField } from "~/components/ui/number-field";
 import { SelectField } from "~/components/ui/select-field";
 import { SliderField } from "~/components/ui/slider-field";
-import { formatEnergy, formatTemperature } from "~/lib/format";
+import { formatEnergy, formatTemperature, withUnit } from "~/lib/format";
 import { TEMPERATURE_RANGE_K, type WeightsChoice } from "~/lib/url-state";
 import { SettingsStrip } from "./settings-strip";
 import { useWorkbench } from "./workbench-context";
@@ -12,8 +12,19 @@ import { useWorkbench } from "./workbench-context";
 export function PopulationSettings() {
   const { level, state, change, temperatureK, slideTemperature, populations } = useWorkbench();
   const taken = populations?.weights.kind ?? "copies";
+  const settingsWords = `${[
+    level ? `Level ${level.name}` : "No level",
+    withUnit(formatTemperature(temperatureK), "K"),
+    state.windowKcal === null
+      ? "no energy window"
+      : `energy window ${withUnit(formatEnergy(state.windowKcal), "kcal/mol")}`,
+    `weighted by ${taken}`,
+  ].join(", ")}.`;
   return (
-    <SettingsStrip columns="grid-cols-2 sm:grid-cols-[minmax(0,1fr)_minmax(0,1fr)] xl:grid-cols-[minmax(8rem,0.8fr)_minmax(0,1.9fr)_9rem_11rem]">
+    <SettingsStrip
+      words={settingsWords}
+      columns="grid-cols-2 sm:grid-cols-[minmax(0,1fr)_minmax(0,1fr)] xl:grid-cols-[minmax(8rem,0.8fr)_minmax(0,1.9fr)_9rem_11rem]"
+    >
       <div className="min-w-0 max-xl:col-span-2 max-xl:sm:col-span-1">
         <p className={`mb-2 ${labelClass}`}>Level</p>
         <p className="flex min-h-9 items-center">
@@ -39,7 +50,7 @@ export function PopulationSettings() {
         onChange={slideTemperature}
         onCommit={(value) => {
           slideTemperature(null);
-          change({ temperatureK: value });
+          change({ temperatureK: value }, { gradual: true });
         }}
       />
       <NumberField
@@ -54,7 +65,7 @@ export function PopulationSettings() {
         unit="kcal/mol"
         write={formatEnergy}
         wrong="A window lies above 0 kcal/mol, for example 3.00; empty for none."
-        onCommit={(value) => change({ windowKcal: value })}
+        onCommit={(value) => change({ windowKcal: value }, { gradual: true })}
       />
       <SelectField
         label="Weights"

@@ -19,11 +19,17 @@ const PAUSE_MS = 250;
 export function SiftSettings({
   ensemble,
   request,
+  words,
+  onDraft,
   onAsk,
 }: {
   ensemble: EnsembleView;
+  /** What the sift shown was made with, in words. */
+  words: string;
   /** What the sift shown was asked with. */
   request: SiftRequest;
+  /** Every change at once, while a thumb is moved too; null when the settings are those of the sift shown again. */
+  onDraft: (request: SiftRequest | null) => void;
   /** `settled` is false while a thumb is still held. */
   onAsk: (request: SiftRequest, settled: boolean) => void;
 }) {
@@ -34,17 +40,20 @@ export function SiftSettings({
     if (shown.current !== request) {
       shown.current = request;
       setDraft(request);
+      onDraft(null);
     }
-  }, [request]);
+  }, [request, onDraft]);
   const later = useDebounced((next: SiftRequest) => onAsk(next, false), PAUSE_MS);
   const slide = (part: Partial<SiftRequest>) => {
     const next = { ...draft, ...part };
     setDraft(next);
+    onDraft(next);
     later(next);
   };
   const set = (part: Partial<SiftRequest>) => {
     const next = { ...draft, ...part };
     setDraft(next);
+    onDraft(next);
     later.cancel();
     onAsk(next, true);
   };
@@ -61,7 +70,7 @@ export function SiftSettings({
   if (tolerance !== null) lastTolerance.current = tolerance;
 
   return (
-    <SettingsStrip columns="sm:grid-cols-2">
+    <SettingsStrip words={words} columns="sm:grid-cols-2">
       <SliderField
         label="RMSD tolerance"
         value={draft.rmsdTolerance ?? DEFAULT_RMSD_TOLERANCE}

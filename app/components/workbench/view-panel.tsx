@@ -76,11 +76,11 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
         conformers={conformers}
         alignOn={state.align}
         picked={picked}
-        onPick={(atoms) => change({ atoms }, { replace: true })}
+        onPick={(atoms) => change({ atoms })}
         hydrogens={state.hydrogens}
         mode={state.mode}
-        onMode={(mode) => change({ mode }, { replace: true })}
-        onHydrogens={(hydrogens) => change({ hydrogens }, { replace: true })}
+        onMode={(mode) => change({ mode })}
+        onHydrogens={(hydrogens) => change({ hydrogens })}
         caption={plan.caption}
         measures={label !== null && firstValue !== null ? [{ label, text: firstValue }] : []}
         title={ensemble.name}

@@ -107,7 +107,7 @@ export function WorkbenchProvider({
 
   const select = useCallback<Workbench["select"]>(
     (frame, how, order) =>
-      change({ selected: clickSelection(selected, frame, order, how) }, { replace: true }),
+      change({ selected: clickSelection(selected, frame, order, how) }, { gradual: how === "extend" }),
     [change, selected],
   );
   const show = useCallback<Workbench["show"]>((frames) => change({ selected: [...frames] }), [change]);

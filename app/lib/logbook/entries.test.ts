@@ -63,7 +63,7 @@ const WRITTEN: [LogbookEntry, string, string | null][] = [
   [
     { type: "sift", data: { siftId: "a", automatic: true, recipe } },
     "Sift begun after intake",
-    "level MMFF94, RMSD 0.2 Å, no energy tolerance, window 3 kcal/mol, heavy atoms and polar hydrogens, mirror images merged",
+    "level MMFF94, RMSD 0.200\u00a0Å, no energy tolerance, window 3.00\u00a0kcal/mol, heavy atoms and polar hydrogens, mirror images merged",
   ],
   [{ type: "sift", data: { siftId: "a", automatic: false, recipe: { other: 1 } } }, "Asked for a sift", null],
   [

@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { formatCount, plural } from "../format.ts";
+import { fixed, formatCount, formatEnergy, plural, withUnit } from "../format.ts";
 
 /**
  * What the logbook can hold: a closed union, so that every old row still parses and has a sentence.
@@ -298,9 +298,11 @@ function recipeWords(recipe: unknown): string | null {
   const r = read.data;
   const parts = [
     r.levelName === null ? "without energies" : `level ${r.levelName}`,
-    `RMSD ${r.rmsdTolerance} Å`,
-    r.energyTolerance === null ? "no energy tolerance" : `energy ${r.energyTolerance} kcal/mol`,
-    r.window === null ? "no window" : `window ${r.window} kcal/mol`,
+    `RMSD ${withUnit(fixed(r.rmsdTolerance, 3), "Å")}`,
+    r.energyTolerance === null
+      ? "no energy tolerance"
+      : `energy ${withUnit(formatEnergy(r.energyTolerance), "kcal/mol")}`,
+    r.window === null ? "no window" : `window ${withUnit(formatEnergy(r.window), "kcal/mol")}`,
     { heavy: "heavy atoms", "heavy+polarH": "heavy atoms and polar hydrogens", all: "all atoms" }[r.atoms] ??
       r.atoms,
     r.mirror === "merge" ? "mirror images merged" : "mirror images kept apart",

@@ -5,32 +5,58 @@ import { measureHistogram } from "./histogram.ts";
 const filled = (h: ReturnType<typeof measureHistogram>) => h.bins.filter((bin) => bin.share > 0);
 
 describe("measureHistogram of torsions", () => {
-  it("has 24 bins of 15° from -180 to 180", () => {
+  it("has 24 bins of 15° about the multiples of 15°, from -180 on", () => {
     const { bins } = measureHistogram("torsion", [0], [1], [1]);
     expect(bins).toHaveLength(24);
-    expect([bins[0]?.from, bins[0]?.to, bins[23]?.from, bins[23]?.to]).toEqual([-180, -165, 165, 180]);
+    expect([bins[0]?.from, bins[0]?.to, bins[23]?.from, bins[23]?.to]).toEqual([
+      -187.5, -172.5, 157.5, 172.5,
+    ]);
+  });
+
+  it("keeps the peaks of a butane whole: gauche, trans, gauche", () => {
+    const found = filled(
+      measureHistogram("torsion", [178, -179, 65, -65], [0.4, 0.3, 0.15, 0.15], [1, 1, 1, 1]),
+    );
+    expect(found.map((bin) => [bin.from, bin.to])).toEqual([
+      [-67.5, -52.5],
+      [52.5, 67.5],
+      [172.5, 187.5],
+    ]);
+    expect(found.map((bin) => bin.share)).toEqual([0.15, 0.15, 0.7]);
+  });
+
+  it("cuts the circle where the least lies, when nothing is free", () => {
+    const everywhere = Array.from({ length: 24 }, (_, k) => -180 + 15 * k);
+    const shares = everywhere.map((degrees) => (degrees === 30 || degrees === 45 ? 0.01 : 0.98 / 22));
+    const { bins } = measureHistogram("torsion", everywhere, shares, Array(24).fill(1));
+    expect(bins[0]?.from).toBe(37.5 - 360);
+    expect(bins[23]?.to).toBe(37.5);
   });
 
   it("counts a mirror pair half at t and half at -t", () => {
     const found = filled(measureHistogram("torsion", [-154, 158], [0.6, 0.4], [2, 1]));
     expect(found.map((bin) => [bin.from, bin.share])).toEqual([
-      [-165, 0.3],
-      [150, 0.7],
+      [-157.5, 0.3],
+      [142.5, 0.3],
+      [157.5, 0.4],
     ]);
-    expect(found[1]?.parts).toEqual([
-      { index: 0, share: 0.3 },
-      { index: 1, share: 0.4 },
-    ]);
+    expect(found[1]?.parts).toEqual([{ index: 0, share: 0.3 }]);
   });
 
-  it("keeps both halves of a pair at 180 in the last bin, as one part", () => {
+  it("keeps both halves of a pair at 180 in one bin, as one part", () => {
     const found = filled(measureHistogram("torsion", [180], [1], [2]));
-    expect(found).toEqual([{ from: 165, to: 180, share: 1, parts: [{ index: 0, share: 1 }] }]);
+    expect(found).toEqual([{ from: 172.5, to: 187.5, share: 1, parts: [{ index: 0, share: 1 }] }]);
   });
 
-  it("takes an upper bound into its bin", () => {
-    expect(filled(measureHistogram("torsion", [60], [1], [1]))[0]?.to).toBe(60);
-    expect(filled(measureHistogram("torsion", [-180], [1], [1]))[0]?.to).toBe(180);
+  it("puts t and -t into bins that mirror each other, bounds included", () => {
+    for (const degrees of [7.6, 52.5, 60, 67.5, 127.4, 172.5]) {
+      const [low, high] = filled(measureHistogram("torsion", [degrees], [1], [2]));
+      expect(low).not.toBe(undefined);
+      // On the circle: 157.5 to 172.5 mirrors 187.5 to 202.5.
+      expect(((low?.from ?? 1) + (high?.to ?? 0)) % 360).toBeCloseTo(0, 9);
+    }
+    const [last] = filled(measureHistogram("torsion", [-180], [1], [1]));
+    expect(last?.to).toBe(187.5);
   });
 
   it("stacks from the most populated down", () => {

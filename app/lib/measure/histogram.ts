@@ -30,8 +30,9 @@ const MOST_BINS = 24;
 /**
  * Distribution of a measured quantity over conformers, weighted by population.
  *
- * A torsion runs from -180 to 180° in bins of 15°, each with its upper bound, so that 180 closes the last one; a
- * conformer with mirror degeneracy 2 enters half at t, half at -t, since its partner turns the other way. Distances
+ * Torsions lie on a circle: their bins of 15° have the multiples of 15° in their middle, so that a peak at 60 or 180°
+ * stands whole, and the circle is cut where the least lies, at -180° or near it where that is free. A conformer with
+ * mirror degeneracy 2 enters half at t, half at -t, since its partner turns the other way. Distances
  * and angles are the same in both images; their bins, each with its lower bound, begin and end at round values.
  *
  * @param values Å or degrees, null where undefined
@@ -52,8 +53,8 @@ export function measureHistogram(
     );
   }
   const defined = values.filter((value) => value !== null);
-  const edges = kind === "torsion" ? torsionEdges() : roundEdges(kind, defined);
-  const bins: Bin[] = edges.slice(1).map((to, b) => ({ from: edges[b]!, to, share: 0, parts: [] }));
+  const edges = kind === "torsion" ? torsionEdges(-TORSION_BINS / 2) : roundEdges(kind, defined);
+  let bins: Bin[] = edges.slice(1).map((to, b) => ({ from: edges[b]!, to, share: 0, parts: [] }));
   let undefinedShare = 0;
   values.forEach((value, index) => {
     const share = populations[index]!;
@@ -68,6 +69,7 @@ export function measureHistogram(
   for (const bin of bins) {
     bin.parts.sort((a, b) => populations[b.index]! - populations[a.index]! || a.index - b.index);
   }
+  if (kind === "torsion") bins = cutWhereFree(bins);
   return { bins: defined.length > 0 ? bins : [], undefinedShare };
 }
 
@@ -79,13 +81,40 @@ function add(bin: Bin, index: number, share: number): void {
   else bin.parts.push({ index, share });
 }
 
-function torsionEdges(): number[] {
-  const count = 360 / TORSION_BIN_DEG;
-  return Array.from({ length: count + 1 }, (_, b) => -180 + b * TORSION_BIN_DEG);
+const TORSION_BINS = 360 / TORSION_BIN_DEG;
+
+/** Edges of the bins from the one about `first` times 15° on. */
+function torsionEdges(first: number): number[] {
+  return Array.from({ length: TORSION_BINS + 1 }, (_, b) => (first + b - 0.5) * TORSION_BIN_DEG);
 }
 
+/** The bin about the nearest multiple of 15°, of two equally near the one nearer to 0: t and -t mirror each other. */
 function torsionBin(value: number): number {
-  return Math.max(0, Math.ceil((wrapDegrees(value) + 180) / TORSION_BIN_DEG) - 1);
+  const degrees = wrapDegrees(value);
+  const nearest = Math.sign(degrees) * Math.ceil(Math.abs(degrees) / TORSION_BIN_DEG - 0.5);
+  // -180 and 180° are one place.
+  return (nearest + TORSION_BINS / 2) % TORSION_BINS;
+}
+
+/** A place counts as free where the two bins that meet there hold no more than this together. */
+const FREE_SHARE = 0.01;
+/** A cut below -180° weighs as one so many times as far above it: -165 to 195° is read more easily than -195 to 165°. */
+const DOWNWARDS = 3;
+
+/** Turns the circle of bins so that its ends meet where the least lies, of free places at the one nearest to -180°. */
+function cutWhereFree(bins: readonly Bin[]): Bin[] {
+  const count = bins.length;
+  const share = (b: number) => bins[(b + count) % count]!.share;
+  const cost = (b: number) => Math.max(0, share(b - 1) + share(b) - FREE_SHARE);
+  const far = (b: number) => (b < 0 ? -b * DOWNWARDS : b);
+  const places = Array.from({ length: count }, (_, k) => k - count / 2).sort((a, b) => far(a) - far(b));
+  let first = 0;
+  for (const b of places) if (cost(b) < cost(first) - 1e-9) first = b;
+  const edges = torsionEdges(first - count / 2);
+  return bins.map((_, k) => {
+    const bin = bins[(first + k + count) % count]!;
+    return { ...bin, from: edges[k]!, to: edges[k + 1]! };
+  });
 }
 
 function roundEdges(kind: MeasureKind, values: readonly number[]): number[] {

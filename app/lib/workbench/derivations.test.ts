@@ -14,6 +14,7 @@ import {
   joinWords,
   nearMirror,
   populationsFinding,
+  shareFigure,
   shareWords,
   windowFinding,
 } from "./findings.ts";
@@ -147,12 +148,12 @@ describe("cumulative population", () => {
 });
 
 describe("window", () => {
-  test("tosylamide: 8 of 31 conformers above 3.00 kcal/mol hold 0.51 %", () => {
+  test("tosylamide: 8 of 31 conformers above 3.00 kcal/mol hold 0.5 %", () => {
     const outside = outsideWindow(rows);
     expect(outside.count).toBe(8);
     expect(outside.share).toBeCloseTo(0.005113609134187301, 9);
     expect(windowFinding(rows, outside, 3, 298.15, recipe, 0)).toEqual([
-      `Eight conformers above the window of 3.00${NBSP}kcal/mol hold 0.51${NBSP}%.`,
+      `Eight conformers above the window of 3.00${NBSP}kcal/mol hold 0.5${NBSP}%.`,
     ]);
   });
 
@@ -160,7 +161,7 @@ describe("window", () => {
     // exp(-3/RT) = 0.00633: methods page, section 7.
     const [line] = windowFinding(rows, { count: 0, share: 0 }, null, 298.15, { ...recipe, window: 3 }, 12);
     expect(line).toContain("12 frames");
-    expect(line).toContain(`0.63${NBSP}% of the lowest conformer`);
+    expect(line).toContain(`0.6${NBSP}% of the lowest conformer`);
   });
 });
 
@@ -241,7 +242,7 @@ describe("findings in words", () => {
     // exp(-3/RT) = 0.00633: 0.6 % beside 99.4 %
     expect(at([0, 3])).toEqual({
       text: `c1 alone carries 99${NBSP}% of the ensemble at 298.15${NBSP}K.`,
-      second: `Next comes c2 with 0.63${NBSP}%.`,
+      second: `Next comes c2 with 0.6${NBSP}%.`,
     });
     // Two of one energy: half each.
     expect(at([0, 0]).text).toBe(
@@ -260,8 +261,11 @@ describe("findings in words", () => {
   });
 
   test("a share is never rounded to all or nothing", () => {
-    expect([1, 0.9996, 0.69295, 0.0051, 0.00063, 0.00001, 0].map(shareWords)).toEqual(
-      ["100", "more than 99", "69", "0.51", "0.063", "below 0.01", "0"].map((text) => `${text}${NBSP}%`),
+    expect([1, 0.9996, 0.69295, 0.0095, 0.0051, 0.00001, 0].map(shareWords)).toEqual(
+      ["100", "more than 99", "69", "1", "0.5", "below 0.1", "0"].map((text) => `${text}${NBSP}%`),
+    );
+    expect([1, 0.9997, 0.69295, 0.0305, 0.00063, 0.00001, 0].map(shareFigure)).toEqual(
+      ["100.0", "more than 99.9", "69.3", "3.0", "0.1", "below 0.1", "0.0"].map((text) => `${text}${NBSP}%`),
     );
   });
 

@@ -28,17 +28,27 @@ export interface Finding {
 const CARRIES = 0.05;
 
 /**
- * A population in a sentence: whole per cent, finer only below 1 %, and never "100 %" of what is not all.
+ * A population in the finding: whole per cent, one decimal only below 1 %, and never "100 %" of what is not all.
  *
- * @example shareWords(0.69295) // "69 %"; shareWords(0.0051) // "0.51 %"; shareWords(0.997) // "more than 99 %"
+ * @example shareWords(0.69295) // "69 %"; shareWords(0.0051) // "0.5 %"; shareWords(0.997) // "more than 99 %"
  */
 export function shareWords(fraction: number): string {
   if (fraction >= 1 - 1e-12) return formatPercent(1);
   if (fraction >= 0.995) return `more than ${formatPercent(0.99)}`;
-  if (fraction >= 0.00995) return formatPercent(fraction);
-  if (fraction >= 0.001) return formatPercent(fraction, 2);
-  if (fraction >= 0.0001) return formatPercent(fraction, 3);
-  return fraction > 0 ? `below ${formatPercent(0.0001, 2)}` : formatPercent(0);
+  if (fraction >= 0.0095) return formatPercent(fraction);
+  return fraction > 0 ? shareFigure(fraction) : formatPercent(0);
+}
+
+/**
+ * A population in small print and in figures: one decimal as in the tables, and never all or nothing of what is neither.
+ *
+ * @example shareFigure(0.0305) // "3.1 %"; shareFigure(0.0002) // "below 0.1 %"; shareFigure(0.9997) // "more than 99.9 %"
+ */
+export function shareFigure(fraction: number): string {
+  if (fraction >= 1 - 1e-12) return formatPercent(1, 1);
+  if (fraction >= 0.9995) return `more than ${formatPercent(0.999, 1)}`;
+  if (fraction >= 0.0005) return formatPercent(fraction, 1);
+  return fraction > 0 ? `below ${formatPercent(0.001, 1)}` : formatPercent(0, 1);
 }
 
 /** Which shapes carry the ensemble at this temperature. */
@@ -118,7 +128,7 @@ export function windowFinding(
       outside.count === 0
         ? `Nothing lies above the window of ${window}.`
         : `${capital(pluralWord(outside.count, "conformer"))} above the window of ${window} ` +
-            `${outside.count === 1 ? "holds" : "hold"} ${shareWords(outside.share)}.`,
+            `${outside.count === 1 ? "holds" : "hold"} ${shareFigure(outside.share)}.`,
     );
   }
   if (recipe.window !== null) {
@@ -126,7 +136,7 @@ export function windowFinding(
     const bound = Math.exp(-recipe.window / thermalEnergyKcal(temperatureK));
     lines.push(
       `The sift left out ${plural(framesCut, "frame")} above ${withUnit(formatEnergy(recipe.window), "kcal/mol")}; ` +
-        `each copy missing there would weigh at most ${shareWords(bound)} of the lowest conformer.`,
+        `each copy missing there would weigh at most ${shareFigure(bound)} of the lowest conformer.`,
     );
   }
   return lines;
@@ -151,8 +161,7 @@ export function distinctFinding(result: SiftResult): Finding {
       ? ""
       : `${plural(result.dropped.length, "frame was", "frames were")} left out as ` +
         `${result.dropped.length === 1 ? "a repeat; it names whom it repeats" : "repeats; each names whom it repeats"}. `;
-  const took = result.seconds < 0.01 ? `under ${formatSeconds(0.01)}` : formatSeconds(result.seconds);
-  const work = `${plural(result.pairsExamined, "pair")} had to be compared, in ${took}.`;
+  const work = `${plural(result.pairsExamined, "pair")} had to be compared, in ${formatSeconds(result.seconds)}.`;
   return { text, second: [`${explained}${work}`, left].filter(Boolean).join(" ") };
 }
 

@@ -1,4 +1,12 @@
-import { fixed, formatEnergy, formatRmsd, formatTemperature, plural, withUnit } from "../format.ts";
+import {
+  fixed,
+  formatCount,
+  formatEnergy,
+  formatRmsd,
+  formatTemperature,
+  plural,
+  withUnit,
+} from "../format.ts";
 import type { SiftRecipe, SiftRequest } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { CONSTANTS_YEAR } from "../units.ts";
@@ -78,7 +86,7 @@ export function methodsText(options: {
   const { ensemble, recipe, result } = options;
   const sentences = [
     `${plural(ensemble.frames, "structure")} of ${ensemble.formula} (${plural(ensemble.atoms, "atom")}) were read; ` +
-      `${ensemble.accepted} were accepted and ${ensemble.held} held back.`,
+      `${formatCount(ensemble.accepted)} were accepted and ${ensemble.held === 0 ? "none" : formatCount(ensemble.held)} held back.`,
     windowSentence(recipe, result),
     ruleSentence(recipe),
     mirrorSentence(recipe),
