@@ -114,6 +114,104 @@ describe("built assets", () => {
   });
 });
 
+/** The answer as it came over the line, not unpacked. */
+function raw(
+  headers: Record<string, string>,
+  method = "GET",
+): Promise<{ headers: IncomingMessage["headers"]; body: Buffer }> {
+  return new Promise((resolve) => {
+    const sent = httpRequest(base, { headers, method });
+    sent.on("response", (response) => {
+      const chunks: Buffer[] = [];
+      response.on("data", (chunk: Buffer) => chunks.push(chunk));
+      response.on("end", () => resolve({ headers: response.headers, body: Buffer.concat(chunks) }));
+    });
+    sent.end();
+  });
+}
+
+describe("answers of the application", () => {
+  const text = "<p>One of many lines.</p>\n".repeat(500);
+  const page = (headers: Record<string, string> = {}) => {
+    handle = async () => new Response(text, { headers: { "content-type": "text/html", ...headers } });
+  };
+
+  it("are packed for those who unpack, and say what they hang on", async () => {
+    page({ vary: "Cookie" });
+    const packed = await raw({ "accept-encoding": "br, gzip;q=0.5" });
+    expect(packed.headers["content-encoding"]).toBe("gzip");
+    expect(packed.headers.vary).toBe("Cookie, Accept-Encoding");
+    expect(packed.body.length).toBeLessThan(text.length / 20);
+    expect(gunzipSync(packed.body).toString()).toBe(text);
+    for (const headers of [{}, { "accept-encoding": "identity" }, { "accept-encoding": "gzip;q=0, br" }]) {
+      const plain = await raw(headers as Record<string, string>);
+      expect(plain.headers["content-encoding"]).toBe(undefined);
+      expect(plain.headers.vary).toBe("Cookie, Accept-Encoding");
+      expect(plain.body.toString()).toBe(text);
+    }
+  });
+
+  it("go as they are where they are packed, short, tagged, asked to stay so, or no text", async () => {
+    const asks = { "accept-encoding": "gzip" };
+    for (const headers of [
+      { "content-encoding": "br" },
+      { "content-length": String(text.length), "content-type": "application/octet-stream" },
+      { etag: '"a"' },
+      { "cache-control": "private, no-transform" },
+      { "content-type": "application/zip" },
+    ]) {
+      page(headers as Record<string, string>);
+      const answer = await raw(asks);
+      expect(answer.body.toString(), JSON.stringify(headers)).toBe(text);
+    }
+    handle = async () => Response.json({ a: 1 }, { headers: { "content-length": "7" } });
+    const short = await raw(asks);
+    expect(short.headers["content-encoding"]).toBe(undefined);
+    expect(short.headers.vary).toBe("Accept-Encoding");
+  });
+
+  it("of every text travel so: JSON, problems, tables, structures", async () => {
+    for (const type of [
+      "application/json",
+      "application/problem+json",
+      "text/csv; charset=utf-8",
+      "chemical/x-xyz",
+    ]) {
+      page({ "content-type": type });
+      expect((await raw({ "accept-encoding": "gzip" })).headers["content-encoding"], type).toBe("gzip");
+    }
+  });
+
+  it("come piece by piece, packed or not", async () => {
+    let more: () => void = () => {};
+    const waits = new Promise<void>((resolve) => {
+      more = resolve;
+    });
+    handle = async () =>
+      new Response(
+        ReadableStream.from(
+          (async function* () {
+            yield new TextEncoder().encode("first ");
+            await waits;
+            yield new TextEncoder().encode("second");
+          })(),
+        ),
+        { headers: { "content-type": "text/html" } },
+      );
+    const reader = (await fetch(base, { headers: { "accept-encoding": "gzip" } })).body?.getReader();
+    const first = await reader?.read();
+    expect(new TextDecoder().decode(first?.value)).toBe("first ");
+    more();
+    expect(new TextDecoder().decode((await reader?.read())?.value)).toBe("second");
+  });
+
+  it("to a HEAD carry no body and no encoding", async () => {
+    handle = async () => new Response(null, { headers: { "content-type": "text/html" } });
+    const answer = await raw({ "accept-encoding": "gzip" }, "HEAD");
+    expect([answer.headers["content-encoding"], answer.body.length]).toEqual([undefined, 0]);
+  });
+});
+
 describe("requests", () => {
   it("come to the application as they were sent", async () => {
     let seen: { method: string; url: string; body: string; header: string | null } | undefined;

@@ -3,6 +3,7 @@
 // their end on refusals, time limits on senders, and a shutdown that finishes what it began.
 import { createServer } from "node:http";
 import { pipeline, Readable } from "node:stream";
+import { packing } from "./pack.mjs";
 import { loadStaticFiles, sendStatic } from "./static-files.mjs";
 
 /** Most bytes and longest time that an answered request may still send before its connection is cut. */
@@ -73,9 +74,9 @@ function drain(incoming) {
   });
 }
 
-function writeHead(response, answer, closing) {
+function writeHead(response, answer, given, closing) {
   const headers = {};
-  answer.headers.forEach((value, name) => {
+  given.forEach((value, name) => {
     if (name !== "set-cookie") headers[name] = value;
   });
   const cookies = answer.headers.getSetCookie();
@@ -84,7 +85,7 @@ function writeHead(response, answer, closing) {
   response.writeHead(answer.status, headers);
 }
 
-function sendBody(answer, response) {
+function sendBody(answer, packer, response) {
   if (answer.body === null) {
     response.end();
     return Promise.resolve();
@@ -94,7 +95,8 @@ function sendBody(answer, response) {
   return new Promise((resolve) => {
     // An error here means that the caller left or the source broke: the connection is cut, so that nobody takes half
     // an answer for a whole one.
-    pipeline(Readable.fromWeb(answer.body), response, () => resolve());
+    const through = packer === null ? [] : [packer];
+    pipeline([Readable.fromWeb(answer.body), ...through, response], () => resolve());
   });
 }
 
@@ -164,8 +166,9 @@ export function makeServer({ application, handle, staticFolder, before }) {
     );
     await drain(incoming);
     if (response.destroyed) return void given.body?.cancel();
-    writeHead(response, given, state.closing);
-    await sendBody(given, response);
+    const { headers: head, packer } = packing(incoming, given);
+    writeHead(response, given, head, state.closing);
+    await sendBody(given, packer, response);
   }
 
   const server = createServer({ keepAliveTimeout: KEEP_ALIVE_MS }, (incoming, response) => {
