@@ -127,6 +127,35 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
   }),
   z.object({ type: z.literal("column-removed"), data: z.object({ id: z.string(), name: z.string() }) }),
   z.object({ type: z.literal("column-restored"), data: z.object({ id: z.string(), name: z.string() }) }),
+  z.object({
+    type: z.literal("edition-frozen"),
+    data: z.object({ number: z.number(), title: z.string(), conformers: z.number(), sha256: z.string() }),
+  }),
+  z.object({
+    type: z.literal("edition-verified"),
+    data: z.object({ number: z.number(), same: z.boolean(), files: z.number(), agree: z.number() }),
+  }),
+  z.object({ type: z.literal("edition-exported"), data: z.object({ number: z.number(), file: z.string() }) }),
+  z.object({
+    type: z.literal("link-made"),
+    data: z.object({
+      number: z.number(),
+      prefix: z.string(),
+      label: z.string(),
+      endsAt: z.string(),
+      sources: z.boolean(),
+      logbook: z.boolean(),
+    }),
+  }),
+  z.object({
+    type: z.literal("link-opened"),
+    data: z.object({ number: z.number(), prefix: z.string(), label: z.string(), opened: z.number() }),
+  }),
+  z.object({
+    type: z.literal("link-ended"),
+    data: z.object({ number: z.number(), prefix: z.string(), label: z.string() }),
+  }),
+  z.object({ type: z.literal("remark"), data: z.object({ text: z.string() }) }),
   z.object({ type: z.literal("renamed"), data: z.object({ before: z.string(), after: z.string() }) }),
   z.object({
     type: z.literal("moved"),
@@ -271,6 +300,15 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: `Removed the column ${entry.data.name}`, detail: null };
     case "column-restored":
       return { text: `Brought the column ${entry.data.name} back`, detail: null };
+    case "edition-frozen":
+    case "edition-verified":
+    case "edition-exported":
+    case "link-made":
+    case "link-opened":
+    case "link-ended":
+      return handOverWords(entry);
+    case "remark":
+      return { text: `“${entry.data.text}”`, detail: null };
     case "renamed":
       return { text: `Renamed to ${entry.data.after}`, detail: `before: ${entry.data.before}` };
     case "moved":
@@ -279,6 +317,58 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: `Deleted ${entry.data.name}`, detail: null };
     case "restored":
       return { text: `Brought ${entry.data.name} back`, detail: null };
+  }
+}
+
+type HandOverEntry = Extract<
+  LogbookEntry,
+  { type: `edition-${string}` | `link-${"made" | "opened" | "ended"}` }
+>;
+
+const forWhom = (label: string) => (label === "" ? "" : ` for ${label}`);
+
+function handOverWords(entry: HandOverEntry): { text: string; detail: string | null } {
+  switch (entry.type) {
+    case "edition-frozen": {
+      const { number, title, conformers, sha256 } = entry.data;
+      return {
+        text: `Froze edition ${number}${title === "" ? "" : `, “${title}”`}`,
+        detail: `${plural(conformers, "conformer")}; SHA-256 ${formatChecksum(sha256)}`,
+      };
+    }
+    case "edition-verified": {
+      const { number, same, agree, files } = entry.data;
+      const counted = `${agree} of ${plural(files, "file")}`;
+      return same
+        ? { text: `Recomputed edition ${number} and verified it: ${counted}, the same bytes`, detail: null }
+        : { text: `Recomputed edition ${number}: it differs`, detail: `${counted} agree` };
+    }
+    case "edition-exported":
+      return { text: `Took ${entry.data.file} of edition ${entry.data.number}`, detail: null };
+    case "link-made": {
+      const { number, label, endsAt, sources, logbook } = entry.data;
+      const parts = [
+        `ends ${formatDate(endsAt)}`,
+        sources ? "with source files" : "without source files",
+        logbook ? "with part of the logbook" : null,
+      ];
+      return {
+        text: `Made a link to edition ${number}${forWhom(label)}`,
+        detail: parts.filter((part) => part !== null).join(", "),
+      };
+    }
+    case "link-opened": {
+      const { number, opened } = entry.data;
+      return {
+        text: `Opened edition ${number}`,
+        detail: opened === 1 ? "for the first time" : `${plural(opened, "time")} so far`,
+      };
+    }
+    case "link-ended":
+      return {
+        text: `Ended the link to edition ${entry.data.number}${forWhom(entry.data.label)}`,
+        detail: null,
+      };
   }
 }
 

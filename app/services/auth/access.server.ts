@@ -1,7 +1,7 @@
 import { and, eq, isNotNull, isNull, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { isId } from "../../db/new-id.server.ts";
-import { ensembles, members, sifts, teams, users } from "../../db/schema.server.ts";
+import { editions, ensembles, links, members, sifts, teams, users } from "../../db/schema.server.ts";
 import type { DomainError } from "../../lib/errors.ts";
 import { forbidden, notFound } from "../http.server.ts";
 
@@ -218,4 +218,114 @@ export async function accessSift(
   const ensembleId = rows[0]?.ensembleId;
   if (ensembleId === undefined) throw notFound();
   return { ...(await accessEnsemble(actor, verb, ensembleId)), siftId };
+}
+
+/**
+ * Decides on an act on an edition by the ensemble it was frozen from. Guests of the example see none: what members freeze
+ * there is theirs. Throws as `accessTeam`.
+ */
+export async function accessEdition(
+  actor: Actor,
+  verb: Verb,
+  ensembleId: string,
+  number: number,
+): Promise<Grant & { ensembleId: string; editionId: string; number: number }> {
+  const grant = await accessEnsemble(actor, verb, ensembleId);
+  if (grant.role === "guest" || !Number.isSafeInteger(number) || number < 1 || number > 2 ** 31 - 1) {
+    throw notFound();
+  }
+  const rows = await db
+    .select({ editionId: editions.id })
+    .from(editions)
+    .where(
+      and(
+        eq(editions.teamId, grant.teamId),
+        eq(editions.ensembleId, grant.ensembleId),
+        eq(editions.number, number),
+      ),
+    )
+    .limit(1);
+  const editionId = rows[0]?.editionId;
+  if (editionId === undefined) throw notFound();
+  return { ...grant, editionId, number };
+}
+
+/** Decides on an act on a link by the ensemble whose edition it shows. Throws as `accessTeam`. */
+export async function accessLink(
+  actor: Actor,
+  verb: Verb,
+  linkId: string,
+): Promise<Grant & { ensembleId: string; linkId: string }> {
+  if (!isId(linkId)) throw notFound();
+  const rows = await db
+    .select({ ensembleId: editions.ensembleId })
+    .from(links)
+    .innerJoin(editions, eq(editions.id, links.editionId))
+    .where(eq(links.id, linkId))
+    .limit(1);
+  const ensembleId = rows[0]?.ensembleId;
+  if (ensembleId === undefined) throw notFound();
+  return { ...(await accessEnsemble(actor, verb, ensembleId)), linkId };
+}
+
+/** Whoever holds the secret of a link: a guest of one edition, and of nothing else. */
+export interface LinkGrant {
+  live: true;
+  linkId: string;
+  teamId: string;
+  ensembleId: string;
+  editionId: string;
+  prefix: string;
+  label: string;
+  contact: string;
+  sources: boolean;
+  logbook: boolean;
+  endsAt: Date;
+}
+
+/** A link that was there once: its holder is told that it has ended, and whom to ask. */
+export interface EndedLink {
+  live: false;
+  endedAt: Date;
+  contact: string;
+}
+
+/**
+ * Decides what the holder of a link's secret may see, by the checksum of the secret; null for any other text. A link ends
+ * on its day, by hand, and with the ensemble or the team that it shows something of.
+ *
+ * @param secretSha SHA-256 of the secret in the address
+ */
+export async function accessBySecret(
+  secretSha: Buffer,
+  now = new Date(),
+): Promise<LinkGrant | EndedLink | null> {
+  const rows = await db
+    .select({
+      linkId: links.id,
+      teamId: links.teamId,
+      ensembleId: editions.ensembleId,
+      editionId: links.editionId,
+      prefix: links.prefix,
+      label: links.label,
+      contact: links.contact,
+      sources: links.sources,
+      logbook: links.logbook,
+      endsAt: links.endsAt,
+      revokedAt: links.revokedAt,
+      ensembleDeletedAt: ensembles.deletedAt,
+      teamDeletedAt: teams.deletedAt,
+    })
+    .from(links)
+    .innerJoin(editions, eq(editions.id, links.editionId))
+    .innerJoin(ensembles, and(eq(ensembles.id, editions.ensembleId), eq(ensembles.teamId, links.teamId)))
+    .innerJoin(teams, eq(teams.id, links.teamId))
+    .where(eq(links.secretSha, secretSha))
+    .limit(1);
+  const row = rows[0];
+  if (row === undefined) return null;
+  const { revokedAt, ensembleDeletedAt, teamDeletedAt, ...grant } = row;
+  const ends = [row.endsAt, revokedAt, ensembleDeletedAt, teamDeletedAt].filter((at) => at !== null);
+  const endedAt = new Date(Math.min(...ends.map((at) => at.getTime())));
+  return endedAt <= now ? { live: false, endedAt, contact: row.contact } : { live: true, ...grant };
 }
