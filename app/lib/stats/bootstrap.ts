@@ -1,5 +1,5 @@
 import { quantileOfSorted } from "./quantile.ts";
-import { GENERATOR_NAME, generator } from "./random.ts";
+import { GENERATOR_NAME, type Generator, generator } from "./random.ts";
 
 /** Resamples of a bootstrap where none is asked for: our own starting value. */
 export const BOOTSTRAP_RESAMPLES = 2000;
@@ -23,14 +23,15 @@ export interface Bootstrap<Name extends string> {
  * (Efron, J. Am. Stat. Assoc. 1987, 82, 171). Each resample is measured from scratch, offsets included.
  *
  * @param n members of the sample
- * @param measure figures of one resample, given as places 0 to n - 1; null where a figure does not exist
+ * @param measure figures of one resample, given as places 0 to n - 1; null where a figure does not exist. It may take
+ *   further numbers from `draw` for a resample within the resample
  * @returns a null interval where a figure exists in fewer than 95 % of the resamples
  * @throws RangeError for an empty sample
  */
 export function bootstrap<Name extends string>(
   n: number,
   names: readonly Name[],
-  measure: (places: Int32Array) => Record<Name, number | null>,
+  measure: (places: Int32Array, draw: Generator) => Record<Name, number | null>,
   { resamples = BOOTSTRAP_RESAMPLES, seed }: { resamples?: number; seed: number },
 ): Bootstrap<Name> {
   if (n < 1) throw new RangeError("No member to resample.");
@@ -39,7 +40,7 @@ export function bootstrap<Name extends string>(
   const found = new Map(names.map((name) => [name, [] as number[]]));
   for (let k = 0; k < resamples; k++) {
     for (let i = 0; i < n; i++) places[i] = draw.below(n);
-    const figures = measure(places);
+    const figures = measure(places, draw);
     for (const name of names) {
       const value = figures[name];
       if (value !== null) found.get(name)!.push(value);
