@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { fixed, formatCount, formatEnergy, plural, withUnit } from "../format.ts";
+import { fixed, formatChecksum, formatCount, formatDate, formatEnergy, plural, withUnit } from "../format.ts";
 
 /**
  * What the logbook can hold: a closed union, so that every old row still parses and has a sentence.
