@@ -1,5 +1,10 @@
+import { sampleSd } from "../stats/moments.ts";
 import { quantileOfSorted } from "../stats/quantile.ts";
+import { type DrawInput, forEachDraw } from "../trust/energy-draws.ts";
 import { type Moments, sums, valueBehind } from "./average.ts";
+
+/** The seed of every Monte Carlo figure that nobody chose another for; it stands beside the figure. */
+export const DEFAULT_SEED = 20261;
 
 /** What the error of the level makes of an average. */
 export interface AverageError {
@@ -12,22 +17,19 @@ export interface AverageError {
   resultantSd: number | null;
 }
 
-/** Calls `visit` with the populations of one draw after another; the array may be the same one each time. */
-export type EachDraw = (visit: (populations: Float64Array) => void) => void;
-
 /**
  * Averages of several quantities in every draw of the populations, and how far they scatter. One walk over the draws
  * serves all quantities.
  *
- * @param each hands out the draws, as `drawPopulations` makes them
+ * @param input energies, weights, temperature, error and seed: every digit follows from them
  * @returns one entry a quantity; null where it has no value, or none in the draws
  */
-export function averageErrors(quantities: readonly Moments[], each: EachDraw): (AverageError | null)[] {
+export function averageErrors(quantities: readonly Moments[], input: DrawInput): (AverageError | null)[] {
   const made = quantities.map((): { values: number[]; resultants: number[] } => ({
     values: [],
     resultants: [],
   }));
-  each((populations) => {
+  forEachDraw(input, (populations) => {
     quantities.forEach((moments, k) => {
       if (moments.zeroDistance) return;
       const [share, first, second] = sums(moments, populations);
@@ -42,26 +44,16 @@ export function averageErrors(quantities: readonly Moments[], each: EachDraw): (
     if (values.length < 2) return null;
     if (moments.fixed) return { sd: 0, low: 0, high: 0, resultantSd: null };
     if (moments.second) {
-      return { sd: circularSd(values), low: null, high: null, resultantSd: sdOf(resultants) };
+      return { sd: circularSd(values), low: null, high: null, resultantSd: sampleSd(resultants) };
     }
     const sorted = Float64Array.from(values).sort();
     return {
-      sd: sdOf(values),
+      sd: sampleSd(values) ?? 0,
       low: quantileOfSorted(sorted, 0.025),
       high: quantileOfSorted(sorted, 0.975),
       resultantSd: null,
     };
   });
-}
-
-/** About the mean in two passes: no digits are lost where the values lie close together. */
-function sdOf(values: readonly number[]): number {
-  let mean = 0;
-  for (const value of values) mean += value;
-  mean /= values.length;
-  let square = 0;
-  for (const value of values) square += (value - mean) ** 2;
-  return Math.sqrt(square / values.length);
 }
 
 function circularSd(degrees: readonly number[]): number {
