@@ -82,6 +82,7 @@ export function ExampleView3D({ live }: { live: LiveExample }) {
       elements={ensemble.elements}
       bonds={ensemble.bonds}
       conformers={conformers}
+      anchor={positions.get(live.example.kept[0]?.frame ?? 0) ?? null}
       alignOn={null}
       picked={picked}
       onPick={setPicked}

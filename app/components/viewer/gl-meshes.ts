@@ -4,6 +4,7 @@ import {
   atomToken,
   BALL_RADIUS,
   isBall,
+  layerOf,
   lineOpacity,
   lineWidth,
   mixed,
@@ -65,8 +66,10 @@ function newMaterial(kit: Kit, vertex: string, fragment: string, uniforms: Mater
   return material;
 }
 
-export function stickMaterial(kit: Kit, casing: number, [r, g, b]: Rgb): Material {
+/** @param back Å by which what is drawn so gives way to what lies as far from the reader */
+export function stickMaterial(kit: Kit, casing: number, [r, g, b]: Rgb, back: number): Material {
   return newMaterial(kit, STICK_VERTEX, STICK_FRAGMENT, {
+    back: { type: "f", value: back },
     casing: { type: "f", value: casing },
     casingColor: { type: "c", value: { r, g, b } },
   });
@@ -140,13 +143,13 @@ export function strongSticks(scene: Scene, figure: Figure, place: number, palett
   const { positions: p, bonds } = figure;
   const writer = new SegmentWriter(bonds.length + scene.shown.length);
   const z = (atom: number) => scene.elements[atom] ?? 0;
-  const rgb = (atom: number) => palette[atomToken(z(atom))].rgb;
-  const thin = place > 0 && scene.mode === "overlay";
+  const rgb = (atom: number) => mixed(palette.view.rgb, palette[atomToken(z(atom))].rgb, own);
+  const { wider, own } = layerOf(scene.mode === "overlay" ? place : 0);
   const bonded = new Set<number>(bonds);
   for (let k = 0; k + 1 < bonds.length; k += 2) {
     const [a, b] = [bonds[k] ?? 0, bonds[k + 1] ?? 0];
     const [i, j] = [3 * a, 3 * b];
-    const radius = stickRadius(z(a), z(b), thin);
+    const radius = stickRadius(z(a), z(b)) + wider;
     const from = [p[i] ?? 0, p[i + 1] ?? 0, p[i + 2] ?? 0] as const;
     const to = [p[j] ?? 0, p[j + 1] ?? 0, p[j + 2] ?? 0] as const;
     const half = [(from[0] + to[0]) / 2, (from[1] + to[1]) / 2, (from[2] + to[2]) / 2] as const;
@@ -159,7 +162,7 @@ export function strongSticks(scene: Scene, figure: Figure, place: number, palett
   for (const atom of scene.shown) {
     if (!isBall(z(atom)) && bonded.has(atom)) continue;
     const at = [p[3 * atom] ?? 0, p[3 * atom + 1] ?? 0, p[3 * atom + 2] ?? 0] as const;
-    writer.add(...at, ...at, rgb(atom), thin ? 0.7 * BALL_RADIUS : BALL_RADIUS);
+    writer.add(...at, ...at, rgb(atom), BALL_RADIUS + wider);
   }
   return writer;
 }

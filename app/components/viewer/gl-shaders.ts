@@ -74,7 +74,7 @@ void main() {
 /**
  * Round-ended sticks of a radius in Å, and balls as sticks without length, by intersecting the ray of each pixel of an
  * orthographic view. With `casing` the same shape a little wider, in one colour and pushed back by 1 Å: the light edge
- * that parts what crosses in front from what lies behind.
+ * that parts what crosses in front from what lies behind. `back` lets a shape lie behind another in the same place.
  */
 export const STICK_VERTEX = `${COMMON_VERTEX}
 uniform float casing;
@@ -101,6 +101,7 @@ void main() {
 export const STICK_FRAGMENT = `
 uniform mat4 projectionMatrix;
 uniform float casing;
+uniform float back;
 uniform vec3 casingColor;
 varying vec2 vPlace;
 varying vec3 vFrom;
@@ -145,7 +146,7 @@ void main() {
   }
   if (top < -1.0e5) discard;
   if (casing > 0.0) top -= 1.0;
-  vec4 clip = projectionMatrix * vec4(vPlace, top, 1.0);
+  vec4 clip = projectionMatrix * vec4(vPlace, top - back, 1.0);
   gl_FragDepthEXT = 0.5 * clip.z / clip.w + 0.5;
   float light = max(dot(facing, normalize(vec3(0.25, 0.35, 1.0))), 0.0);
   vec3 shade = casing > 0.0 ? casingColor : vColor * (0.6 + 0.4 * light);

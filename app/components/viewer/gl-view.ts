@@ -13,7 +13,7 @@ import {
   stickMaterial,
   strongSticks,
 } from "./gl-meshes";
-import { lineShare, type Palette } from "./look";
+import { layerOf, lineShare, type Palette } from "./look";
 
 /**
  * The molecules on a WebGL canvas, drawn by 3dmol's renderer: one mesh of lines for all conformers in their tint, one
@@ -110,8 +110,9 @@ export function openGlView(library: Library, host: HTMLElement, ground: string, 
       scene.strong.forEach((figure, place) => {
         const segments = strongSticks(scene, figure, place, palette);
         const casing = figure.held && !figure.change ? palette["held-edge"] : palette.view;
-        add(segments, stickMaterial(kit, CASING, casing.rgb), place);
-        add(segments, stickMaterial(kit, 0, casing.rgb), place);
+        const { back } = layerOf(scene.mode === "overlay" ? place : 0);
+        add(segments, stickMaterial(kit, CASING, casing.rgb, back), place);
+        add(segments, stickMaterial(kit, 0, casing.rgb, back), place);
       });
       const depth = Math.max(50, 2.2 * stage.reach + 5);
       const start = (depth - stage.reach) / (2 * depth);

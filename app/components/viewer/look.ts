@@ -32,10 +32,21 @@ export function isBall(z: number): boolean {
   return z !== 1 && z !== 6 && z !== 15;
 }
 
-/** Å; bonds to hydrogen are thinner, and so are the second to fourth structure of an overlay. */
-export function stickRadius(a: number, b: number, thin: boolean): number {
-  const radius = a === 1 || b === 1 ? HYDROGEN_RADIUS : STICK_RADIUS;
-  return thin ? 0.6 * radius : radius;
+/** Å; bonds to hydrogen are thinner. */
+export function stickRadius(a: number, b: number): number {
+  return a === 1 || b === 1 ? HYDROGEN_RADIUS : STICK_RADIUS;
+}
+
+/**
+ * How the structures in atom colours of an overlay are told apart: the first is solid, each further one wider, paler and
+ * a little behind, so that its rim shows even where it lies exactly on the first.
+ *
+ * @param behind 0 for the first one, and for all where they stand side by side
+ * @returns `wider` in Å, `own` the share of its own colour in that of the ground, `back` in Å away from the reader
+ */
+export function layerOf(behind: number): { wider: number; own: number; back: number } {
+  const own = [1, 0.55, 0.42, 0.34][behind] ?? 0.34;
+  return { wider: 0.055 * behind, own, back: 0.12 * behind };
 }
 
 /** Width of a line in CSS pixels: 1 to 4 with the step of the tint. */

@@ -12,7 +12,16 @@ import {
   type Stage,
   stageOf,
 } from "~/lib/view/stage";
-import { atomToken, BALL_RADIUS, isBall, lineOpacity, lineShare, lineWidth, stickRadius } from "./look";
+import {
+  atomToken,
+  BALL_RADIUS,
+  isBall,
+  layerOf,
+  lineOpacity,
+  lineShare,
+  lineWidth,
+  stickRadius,
+} from "./look";
 import { MarkLayer, tokenColour } from "./mark-layer";
 
 /** Conformers in their tint beyond this make the page heavy and the picture no clearer. */
@@ -107,7 +116,7 @@ function StillFigures({ scene, stage, camera }: { scene: Scene; stage: Stage; ca
             key={figure.index}
             scene={scene}
             figure={figure}
-            thin={place > 0 && scene.mode === "overlay"}
+            behind={scene.mode === "overlay" ? place : 0}
             stage={stage}
             camera={camera}
             cell={cellOf(stage, place)}
@@ -146,23 +155,24 @@ interface Piece {
 function Sticks({
   scene,
   figure,
-  thin,
+  behind,
   stage,
   camera,
   cell,
 }: {
   scene: Scene;
   figure: Figure;
-  thin: boolean;
+  behind: number;
   stage: Stage;
   camera: Camera;
   cell: Cell;
 }) {
+  const { wider, own } = layerOf(behind);
   const casing = tokenColour(figure.held && !figure.change ? "held-edge" : "view");
   // Mixed with the ground, not translucent: where sticks meet they would darken each other.
   const paint = (token: Token, z: number) =>
-    `color-mix(in srgb, ${tokenColour(token)} ${Math.round(100 * (1 - fog(z, stage.reach)))}%, ${tokenColour("view")})`;
-  return pieces(scene, figure, thin, stage.scale * camera.zoom, projector(stage, camera, cell)).map(
+    `color-mix(in srgb, ${tokenColour(token)} ${Math.round(100 * own * (1 - fog(z, stage.reach)))}%, ${tokenColour("view")})`;
+  return pieces(scene, figure, wider, stage.scale * camera.zoom, projector(stage, camera, cell)).map(
     (piece) =>
       piece.to === null ? (
         <circle
@@ -203,7 +213,7 @@ function Sticks({
 function pieces(
   scene: Scene,
   figure: Figure,
-  thin: boolean,
+  wider: number,
   scale: number,
   project: ReturnType<typeof projector>,
 ): Piece[] {
@@ -218,7 +228,7 @@ function pieces(
       from,
       to,
       colours: [atomToken(z(a)), atomToken(z(b))],
-      width: Math.max(1.5, 2 * stickRadius(z(a), z(b), thin) * scale),
+      width: Math.max(1.5, 2 * (stickRadius(z(a), z(b)) + wider) * scale),
       z: (from.z + to.z) / 2,
     });
   }
@@ -227,7 +237,7 @@ function pieces(
     if (!isBall(z(atom)) && bonded.has(atom)) continue;
     const from = project(figure.positions, atom);
     const colour = atomToken(z(atom));
-    const radius = thin ? 0.7 * BALL_RADIUS : BALL_RADIUS;
+    const radius = BALL_RADIUS + wider;
     // A ball is painted after the sticks that end in it.
     found.push({
       key: `${atom}`,

@@ -7,6 +7,8 @@ import { homeRotation, type Stage, stageOf } from "~/lib/view/stage";
 /** Assumed until the box is measured, and on the server. */
 const ASSUMED = { width: 420, height: 392 };
 
+const NOTHING: readonly ViewConformer[] = [];
+
 export interface View {
   box: RefObject<HTMLDivElement | null>;
   scene: Scene;
@@ -17,12 +19,12 @@ export interface View {
 }
 
 /** Scene, stage and camera of a view, kept steady while conformers, populations and the size of the box change. */
-export function useView(input: SceneInput): View {
-  const { elements, bonds, conformers, alignOn, hydrogens, mode } = input;
+export function useView(input: SceneInput & { anchor: ViewConformer["positions"] | null }): View {
+  const { elements, bonds, alignOn, hydrogens, mode, anchor } = input;
+  const conformers = anchor === null ? NOTHING : input.conformers;
   const box = useRef<HTMLDivElement>(null);
   const [size, setSize] = useState(ASSUMED);
   const [place] = useState(createPlacer);
-  const anchor = useAnchor(elements, conformers);
   const scene = useMemo(
     () => buildScene({ elements, bonds, conformers, alignOn, hydrogens, mode }, { place, anchor }),
     [elements, bonds, conformers, alignOn, hydrogens, mode, place, anchor],
@@ -54,18 +56,4 @@ export function useView(input: SceneInput): View {
       }),
     reset: () => setMoved(null),
   };
-}
-
-/** Coordinates over which everything is laid, for as long as the molecule is the same. */
-function useAnchor(
-  elements: readonly number[],
-  conformers: readonly ViewConformer[],
-): ViewConformer["positions"] | null {
-  const key = elements.join(" ");
-  const [kept, setKept] = useState<{ key: string; positions: ViewConformer["positions"] } | null>(null);
-  const first = conformers[0]?.positions ?? null;
-  if (kept?.key === key) return kept.positions;
-  // State set while rendering: the first conformers that arrive decide, before anything is drawn.
-  if (first) setKept({ key, positions: first });
-  return first;
 }

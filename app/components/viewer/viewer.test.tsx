@@ -26,6 +26,7 @@ function props(change: Partial<ViewerProps> = {}): ViewerProps {
     elements,
     bonds,
     conformers: conformers(3),
+    anchor: Float64Array.from(zigzag),
     alignOn: null,
     picked: [0, 1, 2, 3],
     onPick: ignore,

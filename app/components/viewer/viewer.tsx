@@ -20,6 +20,11 @@ export interface ViewerProps {
   elements: readonly number[];
   bonds: readonly number[];
   conformers: readonly ViewConformer[];
+  /**
+   * Coordinates over which everything lies and from which the view opens: the same ones at every visit. Null where they
+   * are not here yet: nothing is drawn before.
+   */
+  anchor: ViewConformer["positions"] | null;
   /** Atoms from 0; null: the heavy atoms. */
   alignOn: readonly number[] | null;
   /** Atoms from 0, up to four. */

@@ -74,6 +74,7 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
         elements={ensemble.elements}
         bonds={ensemble.bonds}
         conformers={conformers}
+        anchor={workbench.anchor === null ? null : (positions.get(workbench.anchor) ?? null)}
         alignOn={state.align}
         picked={picked}
         onPick={(atoms) => change({ atoms })}

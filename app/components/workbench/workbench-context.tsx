@@ -21,13 +21,11 @@ import {
   type FrameRole,
   frameRoles,
 } from "~/lib/workbench/conformers";
-import type { NearPair } from "~/lib/workbench/distances";
 import { clickSelection } from "~/lib/workbench/selection";
 import { MAX_OVERLAID } from "~/lib/workbench/view-plan";
 
 /** Of larger sets the columns that need coordinates are computed for the most populated only, and the page says so. */
 export const MAX_MEASURED = 5000;
-const NEAREST_PAIRS = 5;
 
 export interface Workbench {
   ensemble: EnsembleView;
@@ -51,9 +49,13 @@ export interface Workbench {
   /** Conformers whose coordinates the computed columns cover. */
   measured: ReadonlySet<number>;
   column: DistanceColumn | null;
+  /**
+   * Frame over which the view lays everything: the lowest conformer, so that the picture opens from the same side
+   * whatever is selected; before there is a set, the first frame that can be shown.
+   */
+  anchor: number | null;
   /** Row that the RMSD column is taken to. */
   reference: ConformerRow | null;
-  nearPairs: NearPair[] | null;
 }
 
 const Context = createContext<Workbench | null>(null);
@@ -105,6 +107,8 @@ export function WorkbenchProvider({
     [state.selected, rows, first, ensemble.frames],
   );
 
+  const anchor = rows[0]?.frame ?? first ?? selected[0] ?? null;
+
   const select = useCallback<Workbench["select"]>(
     (frame, how, order) =>
       change({ selected: clickSelection(selected, frame, order, how) }, { gradual: how === "extend" }),
@@ -112,13 +116,14 @@ export function WorkbenchProvider({
   );
   const show = useCallback<Workbench["show"]>((frames) => change({ selected: [...frames] }), [change]);
 
-  const { coordinates, measured, column, reference, nearPairs } = useMeasures({
+  const { coordinates, measured, column, reference } = useMeasures({
     ensemble,
     sift,
     rows,
     selected,
     picked: state.atoms.length >= 2,
     section,
+    anchor,
   });
 
   const value = useMemo<Workbench>(
@@ -141,7 +146,7 @@ export function WorkbenchProvider({
       measured,
       column,
       reference,
-      nearPairs,
+      anchor,
     }),
     [
       ensemble,
@@ -161,7 +166,7 @@ export function WorkbenchProvider({
       measured,
       column,
       reference,
-      nearPairs,
+      anchor,
     ],
   );
   return <Context value={value}>{children}</Context>;
@@ -185,6 +190,7 @@ function useMeasures({
   selected,
   picked,
   section,
+  anchor,
 }: {
   ensemble: EnsembleView;
   sift: SiftView | null;
@@ -192,6 +198,7 @@ function useMeasures({
   selected: readonly number[];
   picked: boolean;
   section: string;
+  anchor: number | null;
 }) {
   // The set that is measured must not change with the temperature, or every step of the slider would begin it anew.
   const frames = useMemo(
@@ -205,8 +212,9 @@ function useMeasures({
     const overlaid = byPopulation(settled)
       .slice(0, MAX_OVERLAID)
       .map((row) => row.frame);
-    return [...new Set([...selected, ...overlaid, ...(distances || picked ? frames : [])])];
-  }, [settled, selected, distances, picked, frames]);
+    const lowest = anchor === null ? [] : [anchor];
+    return [...new Set([...lowest, ...selected, ...overlaid, ...(distances || picked ? frames : [])])];
+  }, [settled, selected, distances, picked, frames, anchor]);
   const coordinates = useCoordinates(ensemble.id, ensemble.atoms, wanted);
   const measured = useMemo(() => new Set(frames), [frames]);
 
@@ -231,14 +239,6 @@ function useMeasures({
   const reference =
     selected.map((frame) => byFrame.get(frame)).find((row) => row !== undefined) ?? rows[0] ?? null;
   const at = reference === null ? null : frames.indexOf(reference.frame);
-  const { column, pairs } = useDistances(
-    set,
-    coordinates.positions,
-    at === null || at < 0 ? null : at,
-    section === "distinct-set" && frames.length <= MAX_PAIRED ? NEAREST_PAIRS : 0,
-  );
-  return { coordinates, measured, column, reference, nearPairs: pairs };
+  const column = useDistances(set, coordinates.positions, at === null || at < 0 ? null : at);
+  return { coordinates, measured, column, reference };
 }
-
-/** Above this many conformers the search for the nearest pairs would keep a phone busy for minutes. */
-export const MAX_PAIRED = 3000;
