@@ -71,6 +71,8 @@ const schema = z
     MAX_FILE_BYTES: count(512 * MEBIBYTE),
     MAX_FRAMES: count(50_000),
     MAX_ATOMS: count(1_000),
+    /** Further quantities that the comments and data fields of an upload may bring. */
+    MAX_COLUMNS: count(200, 0),
     TEAM_QUOTA_BYTES: count(20e9),
     API_CALLS_PER_MINUTE: count(1_200),
     API_UPLOADS_PER_MINUTE: count(240),

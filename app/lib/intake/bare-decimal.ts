@@ -31,5 +31,6 @@ export function bareDecimal(comment: string): BareDecimal | null {
   // Digits on both sides; other forms are for the reader of words to judge.
   if (point <= first || point === to - 1) return null;
   const text = comment.slice(from, to);
-  return { text, value: Number(text), decimals: to - point - 1 };
+  const value = Number(text);
+  return Number.isFinite(value) ? { text, value, decimals: to - point - 1 } : null;
 }

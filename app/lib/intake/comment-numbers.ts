@@ -7,7 +7,8 @@ export interface CommentNumber {
   /** Counts every number of the line from 1, whole ones too. */
   readonly position: number;
   readonly text: string;
-  readonly value: number;
+  /** Null for a number beyond what can be stored, such as `1e400`. */
+  readonly value: number | null;
   /** The unbroken run of characters before `=` or `:`, or null. */
   readonly key: string | null;
   /** Words before it back to the number before, the nearest last, without the key; at most four. */
@@ -153,12 +154,11 @@ function wordsBehind(tokens: readonly Token[], at: number): readonly string[] {
 }
 
 /** A whole word that is a number, brackets and closing punctuation aside. */
-function readWhole(word: string): { text: string; value: number; unit: EnergyUnit | null } | null {
+function readWhole(word: string): { text: string; value: number | null; unit: EnergyUnit | null } | null {
   const text = word.replace(/^[([{<'"]+/, "").replace(/[)\]}>,;'"]+$/, "");
   const length = numberLength(text, 0);
   if (length === 0) return null;
   const value = parseNumber(text.slice(0, length));
-  if (value === null) return null;
   if (length === text.length) return { text, value, unit: null };
   const unit = text.length - length < 2 ? null : parseEnergyUnit(text.slice(length));
   return unit && { text: text.slice(0, length), value, unit };

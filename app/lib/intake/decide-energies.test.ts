@@ -128,7 +128,7 @@ describe("columns of a decision", () => {
     expect(decision.kind).toBe("column");
     if (decision.kind === "ask") return;
     const settled = settleEnergies(decision, {
-      candidates: findings.candidates,
+      findings,
       answers,
       kindStated: false,
       extended: true,

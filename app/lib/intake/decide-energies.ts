@@ -2,7 +2,8 @@ import { DomainError, type Fault } from "../errors.ts";
 import { ENERGY_UNITS, type EnergyUnit } from "../units.ts";
 import type { EnergyKind } from "../views.ts";
 import type { EnergyCandidate, EnergyFindings } from "./energies.ts";
-import { energyFromQuestion, energyUnitQuestion } from "./energy-questions.ts";
+import { energyFromQuestion, energyUnitQuestion, unitsInWords } from "./energy-questions.ts";
+import { unreadableEnergy } from "./energy-remarks.ts";
 import { findUnit } from "./energy-unit-finding.ts";
 import type { IntakeMessage, IntakeQuestion, QuestionOption } from "./report.ts";
 
@@ -56,11 +57,14 @@ export function decideEnergies(
   mode: DecisionMode,
 ): EnergyDecision {
   if (answers.energyFrom === NO_ENERGY) return { kind: "none", messages: [] };
-  if (findings.verdict === "none") return { kind: "none", messages: unusedAnswers(findings, answers) };
+  if (findings.verdict === "none") {
+    return { kind: "none", messages: [...unreadable(findings), ...unusedAnswers(findings, answers)] };
+  }
   const { chosen } = findings;
   if (chosen === null) return { kind: "ask", questions: askNumber(findings, elements, answers, mode) };
   const finding = findUnit(chosen, elements);
   const stated = asUnit(answers.energyUnit);
+  refuseMixed(chosen, stated, mode);
   const unit = stated ?? (mode.confirmUnit ? null : finding.unit);
   if (mode.refuseOpen) refuseOpen(chosen, unit, answers.level);
   const questions: IntakeQuestion[] = [];
@@ -84,6 +88,19 @@ function nameOf(candidate: EnergyCandidate): string {
   return candidate.key === null ? `number ${candidate.position} of the comment line` : `“${candidate.key}”`;
 }
 
+/**
+ * Two units beside one number are no column. Where the unit stated is one of them, frames with another one stay without
+ * energy; else nothing says which is meant.
+ */
+function refuseMixed(candidate: EnergyCandidate, stated: EnergyUnit | null, mode: DecisionMode): void {
+  if (candidate.unitRows.size < 2 || (stated !== null && candidate.unitRows.has(stated))) return;
+  if (stated === null && !mode.refuseOpen) return;
+  const message = `Different units stand beside ${nameOf(candidate)}: ${unitsInWords(candidate)}. Write all energies in one unit, or state one of these in energyUnit: frames with another one then stay without energy.`;
+  throw new DomainError("invalid", "The energies have different units", message, {
+    faults: [{ field: "energyUnit", message }],
+  });
+}
+
 function refuseOpen(candidate: EnergyCandidate, unit: EnergyUnit | null, level: string | null): void {
   const shown = candidate.first.find((text) => text !== null) ?? "";
   const what = `The comment lines hold an energy, ${nameOf(candidate)} (${shown} in the first frames)`;
@@ -105,17 +122,33 @@ function refuseOpen(candidate: EnergyCandidate, unit: EnergyUnit | null, level: 
   throw new DomainError("invalid", "The energies are not clear", detail, { faults });
 }
 
+/** What is named as the energy and is no number in any frame: told frame by frame, with what stands there. */
+function unreadable({ unreadable, rows }: EnergyFindings): IntakeMessage[] {
+  if (unreadable === null) return [];
+  return [...unreadable.rows].map(([row, text]) => unreadableEnergy(rows[row]!, text));
+}
+
+/** What was said of energies although there are none. */
+function statedWords({ level, energyUnit, energyKind, energyTemperature }: EnergyAnswers): string | null {
+  if (level !== null) return `the level “${level}” was not made`;
+  if (energyUnit !== null) return `no level was made, and the unit ${energyUnit} is not used`;
+  if (energyKind !== "electronic") return `no level was made, and energyKind=${energyKind} is not used`;
+  return energyTemperature === null ? null : "no level was made, and energyTemperature is not used";
+}
+
 /** The caller spoke of energies, and there are none. */
 function unusedAnswers(findings: EnergyFindings, answers: EnergyAnswers): IntakeMessage[] {
-  const row = findings.candidates[0]?.column.rows[0];
-  if (answers.level === null && answers.energyUnit === null) return [];
-  const level = answers.level === null ? "no level was made" : `the level “${answers.level}” was not made`;
+  const stated = statedWords(answers);
+  if (stated === null && findings.unreadable === null) return [];
+  const what =
+    findings.unreadable === null ? "hold no energy" : `hold no number as “${findings.unreadable.key}”`;
   return [
     {
       code: "E10",
       severity: "remark",
-      file: row?.file ?? "",
-      message: `The comment lines hold no energy, so ${level}.`,
+      file: findings.rows[0]?.file ?? "",
+      ...(findings.unreadable === null ? {} : { found: findings.unreadable.found }),
+      message: `The comment lines ${what}, so ${stated ?? "no level was made"}.`,
       hint: "If one of their numbers is the energy, name it with energyFrom and read the files again.",
     },
   ];

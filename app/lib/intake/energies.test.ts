@@ -273,7 +273,7 @@ describe("remarks on a settled column", () => {
 
   test("equal, narrow, wide and positive ones are told once", () => {
     expect(remarks(["E = 1.25", "E = 1.25"], "kcal/mol")[0]?.message).toBe("All 2 energies are equal.");
-    expect(remarks(["E = 1.251", "E = 1.252"], "kcal/mol")[0]?.message).toContain("0.0010 kcal/mol");
+    expect(remarks(["E = 1.251", "E = 1.252"], "kcal/mol")[0]?.message).toContain("0.001 kcal/mol");
     const wide = Array.from({ length: 40 }, (_, k) => `E = ${10 * k}.25`);
     expect(remarks(wide, "kcal/mol")[0]?.message).toContain("span 390 kcal/mol");
     expect(remarks(["E = 1.2510001", "E = 1.2520002"], "hartree")[0]?.message).toContain("positive");

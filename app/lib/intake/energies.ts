@@ -1,8 +1,7 @@
 import type { SdfFields } from "../sdf/frame.ts";
-import { quoteFound } from "../text/escape.ts";
 import type { EnergyUnit } from "../units.ts";
-import { type BareDecimal, bareDecimal } from "./bare-decimal.ts";
-import { type CommentNumber, type ScannedComment, scanComment } from "./comment-numbers.ts";
+import { bareDecimal } from "./bare-decimal.ts";
+import { type ScannedComment, scanComment } from "./comment-numbers.ts";
 import {
   absentEnergy,
   type EnergyColumn,
@@ -13,15 +12,18 @@ import {
   extractEnergy,
   parseFrom,
 } from "./energy-column.ts";
-import { boundUnit, classify, type NumberClass, namesEnergy, saysRelative } from "./energy-words.ts";
+import { makeCandidate, Track } from "./energy-track.ts";
+import { type NumberClass, namesEnergy } from "./energy-words.ts";
 import { hasProperties } from "./extended-comment.ts";
 import { extractFieldEnergy, scanFields } from "./field-energies.ts";
+import { type TextKey, TextKeys } from "./text-keys.ts";
 
-/** Keys, and positions, beyond these are not followed: no comment line holds so many energies. */
+/** Positions beyond these are not followed, nor keys that name an energy: no comment line holds so many. */
 const MAX_TRACKS = 48;
-
-/** Frames whose values are shown when the number is asked for. */
-const SHOWN = 3;
+/** Quantities that a file's comments and fields may bring, where nothing else is said. */
+export const DEFAULT_MAX_COLUMNS = 200;
+/** Names of keys beyond that are kept for the message; the rest is counted. */
+const NAMED_BEYOND = 5_000;
 
 /** One number that runs through the frames. */
 export interface EnergyCandidate {
@@ -45,8 +47,8 @@ export interface EnergyCandidate {
   readonly wholeNumbers: boolean;
   /** One more in every frame. */
   readonly countsUp: boolean;
-  /** Units bound to it, and in how many frames; `unitless` counts the frames without. */
-  readonly units: ReadonlyMap<EnergyUnit, number>;
+  /** Units bound to it, with the indices of their rows; `unitless` counts the values without. */
+  readonly unitRows: ReadonlyMap<EnergyUnit, readonly number[]>;
   readonly unitless: number;
   /** A bare key `energy` or `free_energy` of extended comments, in most frames (row E05). */
   readonly customary: boolean;
@@ -67,7 +69,13 @@ export interface EnergyFindings {
   /** What to propose where several could be; the chosen one otherwise. */
   readonly proposed: EnergyCandidate | null;
   /** A key that names an energy but holds no number in any frame, such as `E = -76,02`; null where there is none. */
-  readonly unreadable: { readonly key: string; readonly found: string } | null;
+  readonly unreadable: TextKey | null;
+  /** Keys whose value is text, a logical or several numbers, in the frames named. */
+  readonly texts: readonly TextKey[];
+  /** Keys beyond the limit of columns, in order of appearance, and how many there are. */
+  readonly beyond: { readonly names: readonly string[]; readonly count: number };
+  /** Where each frame stands, by row index. */
+  readonly rows: readonly EnergyRow[];
 }
 
 /**
@@ -91,14 +99,22 @@ export class EnergyScan {
   /** By the name of their data field. */
   readonly #fields = new Map<string, Track>();
   readonly #rows: EnergyRow[] = [];
-  #unreadable: { key: string; found: string } | null = null;
+  readonly #texts = new TextKeys();
+  readonly #beyond = new Set<string>();
+  #beyondCount = 0;
+  /** Keys that are followed: those that name an energy have room of their own, wherever they stand. */
+  #energyKeys = 0;
+  #otherKeys = 0;
+  readonly #maxColumns: number;
 
   /**
    * @param options.from the caller's answer: only this number is taken, and it must be found
+   * @param options.maxColumns keys and fields that are followed; the rest is named in `beyond`
    * @throws DomainError "invalid" on a rule of another form
    */
-  constructor(options: { from?: EnergyFrom | null } = {}) {
+  constructor(options: { from?: EnergyFrom | null; maxColumns?: number } = {}) {
     this.#from = options.from ?? null;
+    this.#maxColumns = options.maxColumns ?? DEFAULT_MAX_COLUMNS;
     if (this.#from !== null) parseFrom(this.#from);
   }
 
@@ -113,7 +129,7 @@ export class EnergyScan {
     // Most large files write the energy alone: the way through all words is long, and always ends the same.
     const bare = this.#from === null && !fields ? bareDecimal(comment) : null;
     if (bare) {
-      trackOf(this.#positions, 1, true)?.putBare(row, bare);
+      this.#trackAt(1)?.putBare(row, bare);
       return;
     }
     if (this.#from !== null) this.#given.set(row, extractGiven(comment, fields, this.#from));
@@ -121,20 +137,44 @@ export class EnergyScan {
     const extended = scanned.keyed.size > 0 && hasProperties(comment);
     this.#follow(this.#keys, row, scanned, extended);
     for (const number of scanned.numbers) {
-      trackOf(this.#positions, number.position, true)?.put(row, number, scanned, extended);
+      this.#trackAt(number.position)?.put(row, number, scanned, extended);
     }
     if (fields) this.#follow(this.#fields, row, scanFields(fields), false);
   }
 
   #follow(tracks: Map<string, Track>, row: number, scanned: ScannedComment, extended: boolean): void {
     for (const [key, entry] of scanned.keyed) {
-      const track = trackOf(tracks, key, entry.number !== null);
-      if (entry.number) track?.put(row, entry.number, scanned, extended);
-      else if (track) track.values.set(row, { problem: entry.text.slice(0, 200) });
-      else if (this.#unreadable === null && namesEnergy(key)) {
-        this.#unreadable = { key, found: quoteFound(entry.text) };
-      }
+      const known = tracks.get(key);
+      if (entry.number) (known ?? this.#trackOf(tracks, key))?.put(row, entry.number, scanned, extended);
+      else if (known) known.values.set(row, { problem: entry.text.slice(0, 200) });
+      else this.#texts.put(key, row, entry.text);
     }
+  }
+
+  #trackAt(position: number): Track | null {
+    const known = this.#positions.get(position);
+    if (known || this.#positions.size >= MAX_TRACKS) return known ?? null;
+    const track = new Track(position);
+    this.#positions.set(position, track);
+    return track;
+  }
+
+  /** A new track, which begins with the texts that stood there before; null for a key too many. */
+  #trackOf(tracks: Map<string, Track>, key: string): Track | null {
+    const energy = namesEnergy(key);
+    if (energy ? this.#energyKeys >= MAX_TRACKS : this.#otherKeys >= this.#maxColumns) {
+      if (!this.#beyond.has(key)) {
+        this.#beyondCount += 1;
+        if (this.#beyond.size < NAMED_BEYOND) this.#beyond.add(key);
+      }
+      return null;
+    }
+    if (energy) this.#energyKeys += 1;
+    else this.#otherKeys += 1;
+    const track = new Track(0);
+    for (const [row, problem] of this.#texts.get(key)?.rows ?? []) track.values.set(row, { problem });
+    tracks.set(key, track);
+    return track;
   }
 
   /**
@@ -156,12 +196,16 @@ export class EnergyScan {
     for (const [name, track] of this.#fields) found.push(make(`field:${name}`, name, track));
     const candidates = found.filter((candidate) => candidate.count > 0).sort(byLikelihood);
     if (this.#from !== null) return this.#finishGiven(candidates, include);
-    return { ...decide(candidates), unreadable: this.#withoutNumber() };
+    const told = this.#told();
+    return { ...decide(candidates, told.unreadable), ...told };
   }
 
-  #withoutNumber(): EnergyFindings["unreadable"] {
-    const key = this.#unreadable?.key ?? "";
-    return this.#keys.has(key) || this.#fields.has(key) ? null : this.#unreadable;
+  /** What is said beside the candidates. */
+  #told(): Pick<EnergyFindings, "unreadable" | "texts" | "beyond" | "rows"> {
+    const texts = this.#texts.all().filter(({ key }) => !this.#keys.has(key) && !this.#fields.has(key));
+    const unreadable = texts.find(({ key }) => namesEnergy(key)) ?? null;
+    const beyond = { names: [...this.#beyond], count: this.#beyondCount };
+    return { unreadable, texts, beyond, rows: this.#rows };
   }
 
   /** A name that changes from frame to frame, such as the label in `conf_0007: -12.3`. */
@@ -183,7 +227,8 @@ export class EnergyScan {
     const key = rule.kind === "number" ? null : rule.name;
     const chosen = makeCandidate(from, key, known ?? new Track(0), column, include);
     const others = candidates.filter((candidate) => candidate.from !== from);
-    return { candidates: [chosen, ...others], verdict: "given", chosen, proposed: chosen, unreadable: null };
+    const told = { ...this.#told(), unreadable: null };
+    return { candidates: [chosen, ...others], verdict: "given", chosen, proposed: chosen, ...told };
   }
 
   #trackOfGiven(from: EnergyFrom): Track | undefined {
@@ -199,97 +244,7 @@ function extractGiven(comment: string, fields: SdfFields | undefined, from: Ener
   return fields ? extractFieldEnergy(fields, rule.name) : null;
 }
 
-/** What is gathered of one key or position while the frames pass. */
-class Track {
-  readonly values = new EnergyValues();
-  readonly classes = new Map<NumberClass, number>();
-  readonly units = new Map<EnergyUnit, number>();
-  readonly first: (string | null)[] = Array.from({ length: SHOWN }, () => null);
-  position: number;
-  seen = 0;
-  unitless = 0;
-  relative = 0;
-  customary = 0;
-
-  constructor(position: number) {
-    this.position = position;
-  }
-
-  /** A number that stands alone: what `put` makes of it, without looking. */
-  putBare(row: number, number: BareDecimal): void {
-    this.values.setNumber(row, number.value, number.decimals);
-    this.position = 1;
-    this.seen += 1;
-    this.classes.set("loose", (this.classes.get("loose") ?? 0) + 1);
-    this.unitless += 1;
-    if (row < SHOWN) this.first[row] = number.text;
-  }
-
-  put(row: number, number: CommentNumber, comment: ScannedComment, extended: boolean): void {
-    this.values.set(row, { text: number.text, value: number.value });
-    this.position = number.position;
-    this.seen += 1;
-    const kind = classify(number);
-    this.classes.set(kind, (this.classes.get(kind) ?? 0) + 1);
-    const unit = boundUnit(number, comment);
-    if (unit === null) this.unitless += 1;
-    else this.units.set(unit, (this.units.get(unit) ?? 0) + 1);
-    if (row < SHOWN) this.first[row] = number.text;
-    if (saysRelative(number)) this.relative += 1;
-    if (extended && (number.key === "energy" || number.key === "free_energy")) this.customary += 1;
-  }
-}
-
-function trackOf<Key>(tracks: Map<Key, Track>, key: Key, make: boolean): Track | undefined {
-  const known = tracks.get(key);
-  if (known || !make || tracks.size >= MAX_TRACKS) return known;
-  const track = new Track(0);
-  tracks.set(key, track);
-  return track;
-}
-
-function makeCandidate(
-  from: EnergyFrom,
-  key: string | null,
-  track: Track,
-  column: EnergyColumn,
-  include: (frame: number) => boolean,
-): EnergyCandidate {
-  const chosen = column.rows.flatMap((row, k) => (include(row.frame) ? [k] : []));
-  const values = chosen.filter((k) => column.present[k] === 1).map((k) => column.values[k]!);
-  const wholeNumbers = column.decimals === 0;
-  return {
-    from,
-    key,
-    position: track.position,
-    class: classOf(track),
-    relative: track.relative * 2 > track.seen,
-    count: values.length,
-    total: chosen.length,
-    min: values.length === 0 ? Number.NaN : values.reduce((low, value) => Math.min(low, value)),
-    max: values.length === 0 ? Number.NaN : values.reduce((high, value) => Math.max(high, value)),
-    first: track.first.slice(0, Math.min(SHOWN, column.rows.length)),
-    wholeNumbers,
-    countsUp:
-      wholeNumbers && values.length > 1 && values.every((v, k) => k === 0 || v === values[k - 1]! + 1),
-    units: track.units,
-    unitless: track.unitless,
-    customary: track.customary * 2 > track.seen,
-    column,
-  };
-}
-
 const RANK: readonly NumberClass[] = ["energy", "unit", "loose", "whole", "other"];
-
-/** The best class that holds in half the frames; whole numbers among decimals ("0" for the lowest) count with them. */
-function classOf(track: Track): NumberClass {
-  const count = (kind: NumberClass) => track.classes.get(kind) ?? 0;
-  for (const kind of ["energy", "unit"] as const)
-    if (count(kind) * 2 >= track.seen && count(kind) > 0) return kind;
-  if (count("other") * 2 > track.seen) return "other";
-  if (count("loose") > 0) return "loose";
-  return count("whole") > 0 ? "whole" : "other";
-}
 
 /** Class, then plain names before others, then presence, then place in the line. */
 function byLikelihood(a: EnergyCandidate, b: EnergyCandidate): number {
@@ -302,7 +257,9 @@ function byLikelihood(a: EnergyCandidate, b: EnergyCandidate): number {
   );
 }
 
-function decide(candidates: readonly EnergyCandidate[]): Omit<EnergyFindings, "unreadable"> {
+type Decided = Pick<EnergyFindings, "candidates" | "verdict" | "chosen" | "proposed">;
+
+function decide(candidates: readonly EnergyCandidate[], unreadable: TextKey | null): Decided {
   const viable = candidates.filter((candidate) => RANK.indexOf(candidate.class) <= RANK.indexOf("loose"));
   const best = viable[0];
   if (!best) return { candidates, verdict: "none", chosen: null, proposed: null };
@@ -311,6 +268,9 @@ function decide(candidates: readonly EnergyCandidate[]): Omit<EnergyFindings, "u
   // A stray number in a few frames is no rival; a name in a few frames is no match for a number that is everywhere.
   const rivals = peers.filter((peer) => peer !== best && peer.count * 2 >= most && !sameValues(peer, best));
   const thin = viable.some((candidate) => candidate.count > 2 * most);
+  // "E = -76,02 x = 1.5": what is named as the energy cannot be read, and the next best is no stand-in.
+  const standIn = unreadable !== null && best.class !== "energy";
+  if (standIn) return { candidates, verdict: "several", chosen: null, proposed: null };
   if (rivals.length > 0 || thin) return { candidates, verdict: "several", chosen: null, proposed: best };
   return { candidates, verdict: "lone", chosen: best, proposed: best };
 }

@@ -1,5 +1,5 @@
 import { DomainError } from "../errors.ts";
-import { scanComment } from "./comment-numbers.ts";
+import { type CommentNumber, scanComment } from "./comment-numbers.ts";
 
 /** Which number is the energy: `key:NAME`, `number:N`, or `field:NAME` of an SDF record. */
 export type EnergyFrom = string;
@@ -19,13 +19,15 @@ export function extractEnergy(comment: string, from: EnergyFrom): ExtractedEnerg
   if (rule.kind === "field") return null;
   if (rule.kind === "number") {
     const number = scanned.numbers[rule.position - 1];
-    return number ? { text: number.text, value: number.value } : null;
+    return number ? asEnergy(number) : null;
   }
   const entry = scanned.keyed.get(rule.name);
   if (!entry) return null;
-  return entry.number
-    ? { text: entry.number.text, value: entry.number.value }
-    : { problem: entry.text.slice(0, 200) };
+  return entry.number ? asEnergy(entry.number) : { problem: entry.text.slice(0, 200) };
+}
+
+function asEnergy({ text, value }: CommentNumber): ExtractedEnergy {
+  return value === null ? { problem: text } : { text, value };
 }
 
 type Rule = { kind: "key" | "field"; name: string } | { kind: "number"; position: number };

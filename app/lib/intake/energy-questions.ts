@@ -92,7 +92,7 @@ function otherWords(candidate: EnergyCandidate): string {
  * @example energyUnitQuestion(candidate, findUnit(candidate, elements)).options.map((option) => option.spreadKcal)
  */
 export function energyUnitQuestion(candidate: EnergyCandidate, finding: UnitFinding): IntakeQuestion {
-  const units = new Set<EnergyUnit>([...OFFERED_UNITS, ...candidate.units.keys()]);
+  const units = new Set<EnergyUnit>([...OFFERED_UNITS, ...candidate.unitRows.keys()]);
   const proposed = finding.proposed;
   const ordered = [...units].sort(
     (a, b) => Number(b === proposed) - Number(a === proposed) || kcalPer(a) - kcalPer(b),
@@ -112,8 +112,8 @@ function evidenceWords(candidate: EnergyCandidate, finding: UnitFinding): string
     case "bound":
       return `A unit stands beside ${name}: ${finding.unit}.`;
     case "mixed":
-      return candidate.units.size > 1
-        ? `Different units stand beside ${name}: ${[...candidate.units.keys()].join(", ")}.`
+      return candidate.unitRows.size > 1
+        ? `Different units stand beside ${name}: ${unitsInWords(candidate)}. Frames with another unit than the answer stay without energy.`
         : `A unit stands beside ${name} in some frames only.`;
     case "relative":
       return `The values of ${name} are relative, so the unit cannot be checked against the atoms.`;
@@ -124,6 +124,17 @@ function evidenceWords(candidate: EnergyCandidate, finding: UnitFinding): string
     case "none":
       return `The file names no unit for ${name}.`;
   }
+}
+
+/**
+ * Which units stand beside a number, and in how many frames.
+ *
+ * @example unitsInWords(candidate) // "kcal/mol in 2 frames, kJ/mol in 1 frame"
+ */
+export function unitsInWords({ unitRows }: Pick<EnergyCandidate, "unitRows">): string {
+  return [...unitRows]
+    .map(([unit, rows]) => `${unit} in ${rows.length === 1 ? "1 frame" : `${rows.length} frames`}`)
+    .join(", ");
 }
 
 function unitOption(candidate: EnergyCandidate, finding: UnitFinding, unit: EnergyUnit): QuestionOption {

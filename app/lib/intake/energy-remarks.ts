@@ -1,6 +1,7 @@
 import { quoteFound } from "../text/escape.ts";
 import { type EnergyUnit, GAS_CONSTANT_J, kcalPer, kjPer, STANDARD_TEMPERATURE_K } from "../units.ts";
 import type { EnergyColumn, EnergyRow } from "./energy-column.ts";
+import { readNumber } from "./numbers.ts";
 import type { IntakeMessage } from "./report.ts";
 
 /** Spreads of one molecule's conformers outside of these bounds ask for a second look (methods page, section 1). */
@@ -41,30 +42,64 @@ function remark(code: string, rest: Remark): IntakeMessage {
   return { code, severity: "remark", ...rest };
 }
 
+const LATER = "It is accepted but gets no population; a value can be added later with a table.";
+
 function missing(column: EnergyColumn, k: number): IntakeMessage {
-  const { frame, file, line } = column.rows[k]!;
+  const row = column.rows[k]!;
   const text = column.problems.get(k);
-  const hint = "It is accepted but gets no population; a value can be added later with a table.";
-  const place = { file, frame, line: line + 1, hint };
-  if (text === undefined) return remark("E10", { ...place, message: "The frame has no energy." });
-  return remark("E10", { ...place, message: "The energy is not a number.", found: quoteFound(text) });
+  if (text !== undefined) return unreadableEnergy(row, text);
+  const { frame, file, line } = row;
+  return remark("E10", { file, frame, line: line + 1, message: "The frame has no energy.", hint: LATER });
 }
+
+/** An energy that is written and is no number that can be stored: never a part of it (row E10). */
+export function unreadableEnergy({ frame, file, line }: EnergyRow, text: string): IntakeMessage {
+  const found = quoteFound(text);
+  const place = { file, frame, line: line + 1, found };
+  const { fault } = readNumber(text);
+  if (fault === "not-finite" && /\d/.test(text)) {
+    const message = "The energy is a number out of range.";
+    return remark("E10", { ...place, message, hint: `Numbers end at about 1.8e308. ${LATER}` });
+  }
+  const message = "The energy is not a number.";
+  if (fault !== "decimal-comma") return remark("E10", { ...place, message, hint: LATER });
+  const hint = `Decimal comma or thousands? Write it with a point and nothing else, and take the file in again. ${LATER}`;
+  return remark("E10", { ...place, message, hint });
+}
+
+/** Digits that a person reads: "2,600", "0.26", never an exponent. */
+function plain(value: number): string {
+  return value >= 100 ? Math.round(value).toLocaleString("en-GB") : String(Number(value.toPrecision(2)));
+}
+
+/** Beyond these a number tells no more than that something is wrong. */
+const MOST_FACTOR = 1000;
+const MOST_KCAL = 1e6;
 
 function coarse(column: EnergyColumn, unit: EnergyUnit): IntakeMessage[] {
   const place = 10 ** -column.decimals * kjPer(unit);
   const row = column.rows[0];
   if (!row || column.count === 0 || place <= COARSE_KJ) return [];
   const share = Math.expm1((place * 1000) / (GAS_CONSTANT_J * STANDARD_TEMPERATURE_K));
-  const effect =
-    share > 1 ? `a factor of ${(1 + share).toPrecision(2)}` : `about ${Math.round(share * 100)} %`;
   const decimals = column.decimals === 1 ? "1 decimal" : `${column.decimals || "No"} decimals`;
+  const verb = column.decimals === 1 ? "is" : "are";
   return [
     remark("E11", {
       file: row.file,
-      message: `${decimals} in ${unit} ${column.decimals === 1 ? "is" : "are"} ${place.toPrecision(2)} kJ/mol: ${effect} in a weight at 298 K.`,
+      message: `${decimals} in ${unit} ${verb} ${plain(place)} kJ/mol: ${effect(share)} in a weight at 298 K.`,
       hint: "Have the energies written with more digits.",
     }),
   ];
+}
+
+function effect(share: number): string {
+  if (share >= MOST_FACTOR) return `more than a factor of ${MOST_FACTOR.toLocaleString("en-GB")}`;
+  return share > 1 ? `a factor of ${plain(1 + share)}` : `about ${Math.round(share * 100)} %`;
+}
+
+/** "1,234 kcal/mol"; what is absurd is not spelt out. */
+function kcalWords(kcal: number): string {
+  return kcal > MOST_KCAL ? "more than a million kcal/mol" : `${plain(kcal)} kcal/mol`;
 }
 
 function spread(column: EnergyColumn, there: readonly number[], unit: EnergyUnit): IntakeMessage[] {
@@ -81,13 +116,31 @@ function spread(column: EnergyColumn, there: readonly number[], unit: EnergyUnit
       remark("E12", { file, message, hint: "Is this the number that changes between conformers?" }),
     );
   } else if (kcal < NARROW_KCAL) {
-    const message = `The energies span ${kcal.toPrecision(2)} kcal/mol, less than conformers of one molecule do.`;
-    remarks.push(
-      remark("E12", { file, message, hint: "Is the unit right? Hartree read as kcal/mol looks like this." }),
-    );
+    const message = `The energies span ${spanWords(kcal)}, less than conformers of one molecule do.`;
+    remarks.push(remark("E12", { file, message, hint: narrowHint(kcal / kcalPer(unit), unit) }));
   }
   if (kcal > WIDE_KCAL) remarks.push(...wide(column, there, sorted, unit, kcal));
   return remarks;
+}
+
+/** A span below 0.02 kcal/mol. */
+function spanWords(kcal: number): string {
+  return kcal < 1e-6
+    ? "less than 0.000001 kcal/mol"
+    : `${Number(kcal.toPrecision(2)).toFixed(6).replace(/0+$/, "")} kcal/mol`;
+}
+
+/** What the same numbers would span in a larger unit, where that is what conformers show. */
+function narrowHint(span: number, unit: EnergyUnit): string {
+  const larger = (["hartree", "eV", "kcal/mol", "kJ/mol"] as const).filter(
+    (other) => kcalPer(other) > kcalPer(unit),
+  );
+  const fitting = larger.find((other) => {
+    const kcal = span * kcalPer(other);
+    return kcal >= NARROW_KCAL && kcal <= WIDE_KCAL;
+  });
+  if (fitting === undefined) return "Is the unit right, and are these different conformers?";
+  return `Is the unit right? Read as ${fitting} they would span ${plain(span * kcalPer(fitting))} kcal/mol.`;
 }
 
 /**
@@ -106,15 +159,17 @@ function wide(
   const far = new Set(off);
   const rest = there.filter((k) => !far.has(k)).map((k) => column.values[k]!);
   const restKcal = rest.length === 0 ? 0 : (maximum(rest) - minimum(rest)) * kcalPer(unit);
-  if (off.length === 0 || off.length > Math.max(1, there.length / 20) || restKcal > WIDE_KCAL) {
-    const message = `The energies span ${Math.round(kcal).toLocaleString("en-GB")} kcal/mol, more than conformers of one molecule do.`;
+  // Of two or three nobody can say which one is off.
+  const few = there.length >= 4 && off.length <= Math.max(1, there.length / 20);
+  if (off.length === 0 || !few || restKcal > WIDE_KCAL) {
+    const message = `The energies span ${kcalWords(kcal)}, more than conformers of one molecule do.`;
     const hint = "Is the unit right, and are all frames the same molecule?";
     return [remark("E12", { file: column.rows[there[0]!]!.file, message, hint })];
   }
   return off.map((k) => {
     const { frame, file, line } = column.rows[k]!;
-    const away = Math.round(Math.abs(column.values[k]! - median) * kcalPer(unit)).toLocaleString("en-GB");
-    const message = `The energy lies ${away} kcal/mol from the middle of the others.`;
+    const away = kcalWords(Math.abs(column.values[k]! - median) * kcalPer(unit));
+    const message = `The energy lies ${away} from the middle of the others.`;
     return remark("E12", {
       file,
       frame,

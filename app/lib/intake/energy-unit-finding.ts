@@ -42,7 +42,7 @@ const ATOM_TOLERANCE = 0.01;
  * @example findUnit(candidate, Uint8Array.of(8, 1, 1)).evidence // "atoms" for -76.03
  */
 export function findUnit(candidate: EnergyCandidate, elements: ArrayLike<number>): UnitFinding {
-  const units = [...candidate.units.keys()];
+  const units = [...candidate.unitRows.keys()];
   const [only] = units;
   if (only !== undefined) {
     if (units.length === 1 && candidate.unitless === 0)

@@ -216,6 +216,39 @@ function splitOutsideQuotes(text: string): string[] {
   return parts;
 }
 
+/** Keys with a meaning of their own, in lower case: no quantity of the frame. */
+export const RESERVED_KEYS: ReadonlySet<string> = new Set([
+  "properties",
+  "lattice",
+  "pbc",
+  "name",
+  "label",
+  "charge",
+  "total_charge",
+  "net_charge",
+  "multiplicity",
+  "spin_multiplicity",
+  "mult",
+  "unit",
+  "units",
+  "energy_unit",
+  "energy_units",
+]);
+
+/**
+ * Whether a comment is written as the specification of extended XYZ says: it announces columns, or it is nothing but
+ * `key=value` pairs. Words between them make it plain text, whose numbers are no columns.
+ *
+ * @example isExtended("energy=-1.5 dipole=0.25") // true
+ * @example isExtended("conformer 17  E = 35.1 kcal/mol") // false
+ */
+export function isExtended(comment: string): boolean {
+  if (!comment.includes("=")) return false;
+  if (hasProperties(comment)) return true;
+  const parsed = parseExtendedComment(comment);
+  return !("fault" in parsed) && parsed.keys.size > 0 && !parsed.oddities.has("bare-key");
+}
+
 /**
  * Whether a comment announces columns: `Properties` at the start of a word, then `=`. Such a comment must parse
  * (row X36); any other is plain text that may hold keys.

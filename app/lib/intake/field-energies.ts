@@ -66,7 +66,9 @@ function oneText(values: readonly string[]): string {
 }
 
 /** A number with nothing but a few words behind it, of which the first may be its unit. */
-function readFieldNumber(written: string): Pick<CommentNumber, "text" | "value" | "unit" | "next"> | null {
+function readFieldNumber(
+  written: string,
+): (Pick<CommentNumber, "text" | "unit" | "next"> & { value: number }) | null {
   if (written.length > KEPT) return null;
   const text = plainBlanksAndMinus(written);
   const length = numberLength(text, 0);

@@ -52,7 +52,7 @@ test("several, lone, given", () => {
   expect(d.kind).toBe("column");
   if (d.kind === "ask") return;
   const settled = settleEnergies(d, {
-    candidates: given.candidates,
+    findings: given,
     answers,
     kindStated: true,
     extended: true,

@@ -1,9 +1,11 @@
 import type { ColumnData } from "../column-data.ts";
+import type { EnergyUnit } from "../units.ts";
 import type { EnergyKind } from "../views.ts";
 import type { EnergyAnswers, EnergyDecision } from "./decide-energies.ts";
-import type { EnergyCandidate } from "./energies.ts";
+import type { EnergyCandidate, EnergyFindings } from "./energies.ts";
 import type { EnergyColumn } from "./energy-column.ts";
 import { energyRemarks } from "./energy-remarks.ts";
+import { byFrame, propertyColumns } from "./property-columns.ts";
 import type { IntakeMessage } from "./report.ts";
 
 /** A column as it goes into the database, but for ids and places. */
@@ -26,8 +28,8 @@ export interface SettledEnergies {
 }
 
 export interface SettleOptions {
-  /** All candidates of the scan: further keys of extended comments become columns of their own. */
-  candidates: readonly EnergyCandidate[];
+  /** Of the scan: further keys of extended comments and data fields become columns of their own. */
+  findings: EnergyFindings;
   answers: EnergyAnswers;
   /** False where nobody said which kind of energy it is. */
   kindStated: boolean;
@@ -39,21 +41,6 @@ export interface SettleOptions {
   accepted(frame: number): boolean;
 }
 
-const MAX_PROPERTIES = 64;
-const MAX_NAME = 120;
-/** Keys with a meaning of their own. */
-const RESERVED = new Set([
-  "name",
-  "label",
-
-  "charge",
-  "total_charge",
-  "net_charge",
-  "multiplicity",
-  "spin_multiplicity",
-  "mult",
-]);
-
 /**
  * Columns and remarks of a decision that leaves no question open: the energies under the name of their level, and
  * further numbers of extended comments under their own keys.
@@ -64,10 +51,13 @@ export function settleEnergies(
   decision: Exclude<EnergyDecision, { kind: "ask" }>,
   options: SettleOptions,
 ): SettledEnergies {
-  const properties = propertyColumns(decision, options);
-  if (decision.kind === "none") return { columns: properties, messages: decision.messages };
+  const { findings, answers } = options;
+  if (decision.kind === "none") {
+    const properties = propertyColumns(findings, null, options);
+    return { columns: properties.columns, messages: [...decision.messages, ...properties.messages] };
+  }
   const { candidate, unit, level } = decision;
-  const { answers, kindStated } = options;
+  const { column, otherUnits } = inOneUnit(candidate, unit);
   const energies: NewColumn = {
     name: level,
     kind: "energy",
@@ -76,49 +66,84 @@ export function settleEnergies(
     unit,
     rule: null,
     origin: candidate.from,
-    count: candidate.column.count,
-    data: byFrame(candidate.column, options.frames),
+    count: column.count,
+    data: byFrame(column, options.frames),
   };
-  const remarks = energyRemarks(candidate.column, { unit, kindStated, include: options.accepted });
-  return { columns: [energies, ...properties], messages: [...decision.messages, ...remarks] };
+  const left = new Set(otherUnits.map((message) => message.frame ?? 0));
+  const include = (frame: number) => options.accepted(frame) && !left.has(frame);
+  const properties = propertyColumns(findings, { level, from: candidate.from }, options);
+  return {
+    columns: [energies, ...properties.columns],
+    messages: [
+      ...decision.messages,
+      ...otherUnits,
+      ...energyRemarks(column, { unit, kindStated: options.kindStated, include }),
+      ...temperatureRemarks(answers, column),
+      ...properties.messages,
+    ],
+  };
 }
 
-function propertyColumns(
-  decision: Exclude<EnergyDecision, { kind: "ask" }>,
-  options: SettleOptions,
-): NewColumn[] {
-  if (!options.extended) return [];
-  const taken = decision.kind === "column" ? decision : null;
-  return options.candidates
-    .flatMap((candidate): NewColumn[] => {
-      const { key, from, units, unitless } = candidate;
-      if (key === null || from === taken?.candidate.from || key === taken?.level) return [];
-      if (RESERVED.has(key.toLowerCase()) || key.length > MAX_NAME) return [];
-      const [unit] = units.keys();
-      return [
-        {
-          name: key,
-          kind: "property",
-          energyKind: null,
-          temperature: null,
-          unit: units.size === 1 && unitless === 0 ? (unit ?? null) : null,
-          rule: "linear",
-          origin: from,
-          count: candidate.column.count,
-          data: byFrame(candidate.column, options.frames),
-        },
-      ];
-    })
-    .sort((a, b) => (a.name < b.name ? -1 : 1))
-    .slice(0, MAX_PROPERTIES);
+/** Values with another unit beside them are left out, with a remark on their frames. */
+function inOneUnit(
+  candidate: EnergyCandidate,
+  unit: EnergyUnit,
+): { column: EnergyColumn; otherUnits: IntakeMessage[] } {
+  const { column, unitRows } = candidate;
+  // One unit throughout that is another than the one stated: said once, and taken as stated.
+  if (unitRows.size < 2) return { column, otherUnits: [] };
+  const present = column.present.slice();
+  const otherUnits: IntakeMessage[] = [];
+  for (const [other, rows] of unitRows) {
+    if (other === unit) continue;
+    for (const row of rows) {
+      present[row] = 0;
+      const { frame, file, line } = column.rows[row]!;
+      otherUnits.push({
+        code: "E06",
+        severity: "remark",
+        file,
+        frame,
+        line: line + 1,
+        found: other,
+        message: `The energy is written in ${other}, and the level is in ${unit}: it is left out.`,
+        hint: "Write all energies in one unit and take the file in again.",
+      });
+    }
+  }
+  const values = column.values.map((value, row) => (present[row] === 1 ? value : 0));
+  const count = present.reduce((sum, flag) => sum + flag, 0);
+  otherUnits.sort((a, b) => (a.frame ?? 0) - (b.frame ?? 0));
+  return { column: { ...column, values, present, count }, otherUnits };
 }
 
-/** Frames that could not be read have no row in the scan, and no value. */
-function byFrame(column: EnergyColumn, frames: number): ColumnData {
-  const data = { values: new Float64Array(frames), present: new Uint8Array(frames) };
-  column.rows.forEach(({ frame }, row) => {
-    data.values[frame - 1] = column.values[row]!;
-    data.present[frame - 1] = column.present[row]!;
-  });
-  return data;
+/** A free energy belongs to one temperature, an electronic one to none (row E13). */
+function temperatureRemarks(
+  { energyKind, energyTemperature }: EnergyAnswers,
+  column: EnergyColumn,
+): IntakeMessage[] {
+  const file = column.rows[0]?.file ?? "";
+  if (energyKind === "free" && energyTemperature === null) {
+    return [
+      {
+        code: "E13",
+        severity: "remark",
+        file,
+        message: "These are free energies, and their temperature is not stated.",
+        hint: "State it as energyTemperature and read the files again: populations are right at that temperature only.",
+      },
+    ];
+  }
+  const without = energyKind === "electronic" || energyKind === "zero-point";
+  if (!without || energyTemperature === null) return [];
+  const kind = energyKind === "electronic" ? "Electronic energies" : "Energies with zero-point terms";
+  return [
+    {
+      code: "E13",
+      severity: "remark",
+      file,
+      message: `${kind} belong to no temperature: the ${energyTemperature} K that were stated are kept and not used.`,
+      hint: "If they are free energies or enthalpies, say so in energyKind and read the files again.",
+    },
+  ];
 }

@@ -73,7 +73,7 @@ export async function completeReading(
     decision.kind === "ask"
       ? null
       : settleEnergies(decision, {
-          candidates: findings.candidates,
+          findings,
           answers,
           kindStated: options.kindStated,
           extended: result.extended,

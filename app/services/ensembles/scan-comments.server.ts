@@ -2,7 +2,7 @@ import { and, asc, eq, gt, isNotNull } from "drizzle-orm";
 import { db, type Queryable } from "../../db/client.server.ts";
 import { frames } from "../../db/schema.server.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
-import { hasProperties } from "../../lib/intake/extended-comment.ts";
+import { isExtended } from "../../lib/intake/extended-comment.ts";
 
 const BATCH = 2_000;
 
@@ -39,7 +39,7 @@ export async function scanComments(
       scan.add({ ...row, file: fileNames[file] ?? "" }, comment);
       firstComment ??= comment;
       seen += 1;
-      if (hasProperties(comment)) extended += 1;
+      if (isExtended(comment)) extended += 1;
     }
     const end = rows.at(-1);
     if (end === undefined || rows.length < BATCH) break;

@@ -97,7 +97,7 @@ async function decide(
   });
   if (decision.kind === "ask") return { decision, settled: null, graph };
   const settled = settleEnergies(decision, {
-    candidates: findings.candidates,
+    findings,
     answers,
     kindStated: answers.energyKind !== "electronic",
     extended: scanned.extended,
