@@ -1,0 +1,306 @@
+import { symbolOf } from "../chem/elements.ts";
+import type { ColumnData } from "../column-data.ts";
+import { IntakeRejection } from "../intake/reject.ts";
+import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
+import { quoteFound } from "../text/escape.ts";
+import type { EnergyUnit } from "../units.ts";
+import type { EnergyKind } from "../views.ts";
+import { columnUnit, type KnownUnit, saysEnergy } from "./column-unit.ts";
+import { type ColumnHeader, readAtom, readHeader } from "./header.ts";
+import type { RawColumn } from "./raw-column.ts";
+
+export const RULES = ["linear", "r-6", "r-3", "circular"] as const;
+export type Rule = (typeof RULES)[number];
+
+/** What somebody said of one column; what is left out stays as found. */
+export interface ColumnChoice {
+  /** From 1 in the table; the first column is the key. */
+  column: number;
+  /** False leaves the column out. */
+  use?: boolean;
+  name?: string;
+  /** A text for a property, one of the energy units for an energy; "" for none. */
+  unit?: string;
+  kind?: "energy" | "property";
+  rule?: Rule;
+  /** Atom from 1, or null for a column that belongs to none. */
+  atom?: number | null;
+  quantity?: string;
+}
+
+/** What was said of all columns of a table at once. */
+export interface ColumnAnswers {
+  kind: "energy" | "property" | null;
+  /** Name for the energies, where there is one column of them. */
+  level: string | null;
+  energyUnit: EnergyUnit | null;
+  energyKind: EnergyKind | null;
+  energyTemperature: number | null;
+  rule: Rule | null;
+  /** "plain": names such as C6 are no atoms. */
+  perAtom: "bound" | "plain" | null;
+  columns: ReadonlyMap<number, ColumnChoice>;
+}
+
+/** One column as it would be kept. */
+export interface PlannedColumn {
+  /** From 1 in the table. */
+  column: number;
+  header: string;
+  name: string;
+  kind: "energy" | "property";
+  /** Null where there is none, or where an energy still needs one. */
+  unit: string | null;
+  /** What unit and kind were read from, in words. */
+  why: string;
+  rule: Rule | null;
+  atom: number | null;
+  quantity: string | null;
+  data: ColumnData;
+  /** Frames with a value. */
+  count: number;
+  decimals: number;
+}
+
+export interface PlanContext {
+  file: string;
+  elements: ArrayLike<number>;
+  /** Line of the header. */
+  headerLine: number;
+}
+
+/** What a column is by its header and what was said of it, before its numbers are placed. */
+export interface DraftColumn extends Omit<PlannedColumn, "data" | "count" | "decimals"> {
+  raw: RawColumn;
+  messages: IntakeMessage[];
+  questions: IntakeQuestion[];
+}
+
+const MAX_NAME = 120;
+const ANGLES = new Set(["°", "rad"]);
+
+function cut(text: string): string {
+  return [...text].slice(0, MAX_NAME).join("");
+}
+
+/** Headers without names get their place, equal ones a number behind (row C05). */
+export function nameHeaders(
+  written: readonly string[],
+  file: string,
+): { headers: string[]; messages: IntakeMessage[] } {
+  const messages: IntakeMessage[] = [];
+  const seen = new Set<string>();
+  const remark = (message: string) =>
+    messages.push({ code: "C05", severity: "remark", file, line: 1, message });
+  const headers = written.map((text, k) => {
+    let name = text.trim();
+    if (name === "") {
+      name = `column ${k + 1}`;
+      if (k > 0) remark(`Column ${k + 1} has no name; it is called "${name}".`);
+    }
+    let own = name;
+    for (let n = 2; seen.has(own); n++) own = withNumber(name, n);
+    if (own !== name)
+      remark(`The header "${quoteFound(name)}" stands twice; the second is called "${quoteFound(own)}".`);
+    seen.add(own);
+    return own;
+  });
+  return { headers, messages };
+}
+
+/** "E [kcal/mol]" becomes "E (2) [kcal/mol]": the unit stays at its place. */
+function withNumber(header: string, n: number): string {
+  const { name, unitText, stated } = readHeader(header);
+  return stated ? `${name} (${n}) [${unitText}]` : `${header} (${n})`;
+}
+
+/** The unit of a column: what was said, the header, the cells. */
+function unitOf(header: ColumnHeader, raw: RawColumn, choice: ColumnChoice | undefined) {
+  if (choice?.unit !== undefined) {
+    const text = choice.unit.trim();
+    return { text: text === "" ? null : text, known: columnUnit(text), from: "said" as const };
+  }
+  if (header.unitText !== null) {
+    const from = header.stated ? ("brackets" as const) : ("header" as const);
+    const text = header.unitText === "" || header.unit?.unit === "" ? null : header.unitText;
+    return { text, known: header.unit, from };
+  }
+  const [only] = raw.units.keys();
+  if (only !== undefined && raw.units.size === 1 && raw.unitless === 0) {
+    return { text: only, known: columnUnit(only), from: "cells" as const };
+  }
+  return { text: null, known: null as KnownUnit | null, from: "nothing" as const };
+}
+
+/** Cells that carry another unit than the column, or several: one of them is wrong, and nobody can say which. */
+function checkCellUnits(
+  name: string,
+  unit: ReturnType<typeof unitOf>,
+  raw: RawColumn,
+  context: PlanContext,
+): void {
+  if (raw.units.size === 0 || unit.from === "cells" || unit.from === "said") return;
+  const own = unit.known?.unit ?? unit.text;
+  const other = [...raw.units.keys()].find((text) => (columnUnit(text)?.unit ?? text) !== own);
+  if (other === undefined) return;
+  const column =
+    unit.text === null ? "others have none or another" : `its header says ${quoteFound(unit.text)}`;
+  throw new IntakeRejection({
+    code: "C06",
+    file: context.file,
+    found: quoteFound(other),
+    message: `Cells of "${quoteFound(name)}" carry a unit, and ${column}.`,
+    hint: "Write all values of a column in one unit, as name [unit].",
+  });
+}
+
+const FROM_WORDS = {
+  said: "as stated",
+  brackets: "unit in the header",
+  header: "unit read off the header",
+  cells: "unit read off the cells",
+  nothing: "no unit",
+} as const;
+
+/**
+ * What one column is: name, kind, unit, rule, atom. Open points become questions: an energy without a unit, a unit that
+ * is none of an energy's.
+ *
+ * @param lone it is the only column of the table without a unit: a stated energy unit can only mean it
+ * @throws IntakeRejection C15 where its header names an atom that is not there, or another element
+ */
+export function draftColumn(
+  column: number,
+  header: string,
+  raw: RawColumn,
+  answers: ColumnAnswers,
+  context: PlanContext,
+  lone: boolean,
+): DraftColumn {
+  const choice = answers.columns.get(column);
+  const read = readHeader(header);
+  const unit = unitOf(read, raw, choice);
+  checkCellUnits(header, unit, raw, context);
+  const stated = choice?.kind ?? answers.kind;
+  const byUnit = saysEnergy(unit.known) || (unit.text === null && answers.energyUnit !== null && lone);
+  const kind = stated ?? (byUnit ? "energy" : "property");
+  const name = cut((choice?.name ?? read.name).trim() || `column ${column}`);
+  const draft: DraftColumn = {
+    column,
+    header,
+    name,
+    kind,
+    unit: null,
+    why: FROM_WORDS[unit.from],
+    rule: null,
+    atom: null,
+    quantity: null,
+    raw,
+    messages: [],
+    questions: [],
+  };
+  if (unit.from === "header" || unit.from === "cells") {
+    const place = unit.from === "cells" ? "cells" : "header";
+    draft.messages.push({
+      code: "C06",
+      severity: "remark",
+      file: context.file,
+      line: context.headerLine,
+      found: quoteFound(header),
+      message: `The unit ${unit.text} of "${quoteFound(name)}" was read off its ${place}.`,
+      hint: "Write name [unit] to state it.",
+    });
+  }
+  if (kind === "energy") settleEnergy(draft, unit, answers);
+  else settleProperty(draft, unit, answers, choice, context);
+  return draft;
+}
+
+function settleEnergy(draft: DraftColumn, unit: ReturnType<typeof unitOf>, answers: ColumnAnswers): void {
+  draft.unit = unit.known?.energy ?? (unit.text === null ? answers.energyUnit : null);
+  if (draft.unit !== null) {
+    if (unit.text === null) draft.why = "unit as stated";
+    return;
+  }
+  const reason =
+    unit.text === null
+      ? `The header "${quoteFound(draft.header)}" names no unit.`
+      : `"${quoteFound(unit.text)}" is no unit of energy.`;
+  draft.questions.push({
+    id: "energyUnit",
+    code: "energy-unit",
+    text: `In which unit is "${quoteFound(draft.name)}"?`,
+    reason: `${reason} Write it as name [unit], or state energyUnit.`,
+    options: ["kcal/mol", "kJ/mol", "eV", "hartree"].map((id) => ({ id, text: id })),
+  });
+}
+
+function settleProperty(
+  draft: DraftColumn,
+  unit: ReturnType<typeof unitOf>,
+  answers: ColumnAnswers,
+  choice: ColumnChoice | undefined,
+  context: PlanContext,
+): void {
+  draft.unit = unit.text === null ? null : [...unit.text].slice(0, 40).join("");
+  const isAngle = ANGLES.has(unit.known?.unit ?? "");
+  const startsCircular = unit.known?.unit === "°";
+  draft.rule = choice?.rule ?? answers.rule ?? (startsCircular ? "circular" : "linear");
+  checkRule(draft, unit.known, isAngle, choice?.rule !== undefined ? "columns" : "rule");
+  if (unit.text !== null && unit.known === null) {
+    draft.messages.push({
+      code: "C06",
+      severity: "remark",
+      file: context.file,
+      line: context.headerLine,
+      found: quoteFound(unit.text),
+      message: `The unit of "${quoteFound(draft.name)}" is not known; it is shown as written and takes part in no conversion.`,
+    });
+  }
+  bindAtom(draft, unit.known, answers, choice, context);
+}
+
+function checkRule(draft: DraftColumn, unit: KnownUnit | null, isAngle: boolean, field: string): void {
+  const { rule } = draft;
+  const wrong =
+    rule === "circular"
+      ? unit !== null && !isAngle && "an angle in ° or rad"
+      : (rule === "r-6" || rule === "r-3") && unit !== null && unit.family !== "length" && "a distance";
+  if (!wrong) return;
+  draft.questions.push({
+    id: field,
+    code: "rule",
+    text: `Which rule averages "${quoteFound(draft.name)}"?`,
+    reason: `${rule} averages ${wrong}; "${quoteFound(draft.header)}" is in ${draft.unit}.`,
+    options: RULES.map((id) => ({ id, text: id, proposed: id === "linear" })),
+  });
+}
+
+function bindAtom(
+  draft: DraftColumn,
+  unit: KnownUnit | null,
+  answers: ColumnAnswers,
+  choice: ColumnChoice | undefined,
+  context: PlanContext,
+): void {
+  const { elements, file, headerLine: line } = context;
+  if (choice?.atom === null || (answers.perAtom === "plain" && choice?.atom === undefined)) return;
+  const read = readAtom(readHeader(draft.header).name);
+  const atom = choice?.atom ?? read?.atom;
+  if (atom === undefined) return;
+  const hint = "If the name means no atom, send perAtom=plain.";
+  const found = quoteFound(draft.header);
+  if (atom < 1 || atom > elements.length) {
+    const message = `The header names atom ${atom}; the molecule has ${elements.length}.`;
+    throw new IntakeRejection({ code: "C15", file, line, found, message, hint });
+  }
+  const z = elements[atom - 1] ?? 0;
+  if (choice?.atom === undefined && read?.element != null && read.element !== z) {
+    const message = `The header names ${symbolOf(read.element)} as atom ${atom}, which is ${symbolOf(z)}${atom} here.`;
+    throw new IntakeRejection({ code: "C15", file, line, atom, found, message, hint });
+  }
+  draft.atom = atom;
+  draft.quantity = cut(
+    choice?.quantity ?? read?.quantity ?? (unit?.family === "shift" ? "shift" : (draft.unit ?? "value")),
+  );
+}
