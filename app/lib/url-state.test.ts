@@ -18,7 +18,8 @@ describe("reading", () => {
 
   test("every name of the address is read", () => {
     const params = new URLSearchParams(
-      "v=1&sift=abcdefghij234567&T=310.5&w=2.5&sel=11,235,105&at=3,4,5,6&al=1,2,3&h=all&m=side&weights=degeneracy&sort=rmsd.down",
+      "v=1&sift=abcdefghij234567&T=310.5&w=2.5&sel=11,235,105&at=3,4,5,6&al=1,2,3&h=all&m=side&weights=degeneracy&sort=rmsd.down" +
+        "&level=abcdefghij234567&ref=bbcdefghij234567&zero=common&zf=12&of=accepted&keep=99&err=0.5",
     );
     expect(readState(params)).toEqual({
       sift: "abcdefghij234567",
@@ -31,6 +32,15 @@ describe("reading", () => {
       mode: "side",
       weights: "degeneracy",
       sort: { column: "rmsd", descending: true },
+      compare: {
+        level: "abcdefghij234567",
+        reference: "bbcdefghij234567",
+        zero: "common",
+        zeroFrame: 12,
+        among: "accepted",
+        share: 0.99,
+        sigmaKcal: 0.5,
+      },
     } satisfies WorkbenchState);
   });
 
@@ -62,6 +72,13 @@ describe("reading", () => {
     "sort=up",
     "sort=<b>.up",
     "v=77",
+    "level=MMFF94",
+    "zero=none",
+    "zf=0",
+    "of=all",
+    "keep=101",
+    "keep=0",
+    "err=-1",
   ])("nonsense is taken as absent: %s", (query) => {
     expect(readState(new URLSearchParams(query))).toEqual(defaultState());
   });
@@ -111,6 +128,15 @@ describe("writing", () => {
       sort: fc.option(
         fc.record({ column: fc.constantFrom("energy", "population", "rmsd"), descending: fc.boolean() }),
       ),
+      compare: fc.record({
+        level: fc.option(fc.stringMatching(/^[a-z2-7]{16}$/)),
+        reference: fc.option(fc.stringMatching(/^[a-z2-7]{16}$/)),
+        zero: fc.constantFrom("least-squares", "own-minimum", "common", "median"),
+        zeroFrame: fc.option(fc.integer({ min: 1, max: 50000 })),
+        among: fc.constantFrom("conformers", "accepted"),
+        share: fc.integer({ min: 1, max: 1000 }).map((permille) => permille / 1000),
+        sigmaKcal: fc.integer({ min: 0, max: 2000 }).map((centi) => centi / 100),
+      }),
     });
     fc.assert(
       fc.property(state, (s) => {

@@ -20,7 +20,26 @@ export interface WorkbenchState {
   mode: ViewMode;
   weights: WeightsChoice;
   sort: SortState | null;
+  compare: CompareState;
 }
+
+/** What the section on levels compares, and how. */
+export interface CompareState {
+  /** Ids of level and reference; null is the first and the last that arrived. */
+  level: string | null;
+  reference: string | null;
+  zero: ZeroChoice;
+  /** Frame of the zero "common"; null is the reference's lowest. */
+  zeroFrame: number | null;
+  /** The sift's conformers, or all accepted frames. */
+  among: "conformers" | "accepted";
+  /** Reference population that a window is to keep, fraction. */
+  share: number;
+  /** Error of the reference's energies, kcal/mol; 0 draws no band. */
+  sigmaKcal: number;
+}
+
+export type ZeroChoice = "least-squares" | "own-minimum" | "common" | "median";
 
 export type HydrogenMode = "none" | "polar" | "all";
 export type ViewMode = "overlay" | "side" | "one";
@@ -40,13 +59,20 @@ export const MAX_PICKED = 4;
 /** Three atoms that are not on one line fix a position; more than these make no better one. */
 export const MAX_ALIGNED = 60;
 const MAX_WINDOW_KCAL = 1000;
+export const DEFAULT_SHARE = 0.95;
+/** Our own starting value for the error of a reference level. */
+export const DEFAULT_SIGMA_KCAL = 0.3;
+export const MAX_SIGMA_KCAL = 20;
 const VERSION = "1";
 
 const ID = /^[a-z2-7]{16}$/;
 const NUMBER = /^\d{1,9}(\.\d{1,9})?$/;
 const SORT = /^([a-z][a-z-]{0,30})\.(up|down)$/;
 /** Names of the state in the address. Other parameters belong to somebody else and are kept. */
-const KEYS = ["v", "sift", "T", "w", "sel", "at", "al", "h", "m", "weights", "sort"] as const;
+const KEYS = [
+  ...["v", "sift", "T", "w", "sel", "at", "al", "h", "m", "weights", "sort"],
+  ...["level", "ref", "zero", "zf", "of", "keep", "err"],
+];
 
 export function defaultState(): WorkbenchState {
   return {
@@ -60,6 +86,15 @@ export function defaultState(): WorkbenchState {
     mode: "overlay",
     weights: "auto",
     sort: null,
+    compare: {
+      level: null,
+      reference: null,
+      zero: "least-squares",
+      zeroFrame: null,
+      among: "conformers",
+      share: DEFAULT_SHARE,
+      sigmaKcal: DEFAULT_SIGMA_KCAL,
+    },
   };
 }
 
@@ -87,7 +122,35 @@ export function readState(params: URLSearchParams): WorkbenchState {
     mode: oneOf(params.get("m"), ["overlay", "side", "one"], start.mode),
     weights: oneOf(params.get("weights"), ["auto", "copies", "degeneracy"], start.weights),
     sort: sort === null ? null : { column: sort[1]!, descending: sort[2] === "down" },
+    compare: readCompare(params),
   };
+}
+
+function readCompare(params: URLSearchParams): CompareState {
+  const start = defaultState().compare;
+  const id = (key: string) => (ID.test(params.get(key) ?? "") ? params.get(key) : null);
+  const percent = readNumber(params.get("keep"), 0.01, 100);
+  return {
+    level: id("level"),
+    reference: id("ref"),
+    zero: oneOf(params.get("zero"), ["least-squares", "own-minimum", "common", "median"], start.zero),
+    zeroFrame: readCounts(params.get("zf"), 1)[0] ?? null,
+    among: oneOf(params.get("of"), ["conformers", "accepted"], start.among),
+    share: percent === null ? start.share : Number((percent / 100).toFixed(11)),
+    sigmaKcal: readNumber(params.get("err"), 0, MAX_SIGMA_KCAL) ?? start.sigmaKcal,
+  };
+}
+
+function compareParts(compare: CompareState, start: CompareState): [string, string][] {
+  const pairs: [string, string][] = [];
+  if (compare.level !== null) pairs.push(["level", compare.level]);
+  if (compare.reference !== null) pairs.push(["ref", compare.reference]);
+  if (compare.zero !== start.zero) pairs.push(["zero", compare.zero]);
+  if (compare.zeroFrame !== null) pairs.push(["zf", String(compare.zeroFrame)]);
+  if (compare.among !== start.among) pairs.push(["of", compare.among]);
+  if (compare.share !== start.share) pairs.push(["keep", writeNumber(100 * compare.share)]);
+  if (compare.sigmaKcal !== start.sigmaKcal) pairs.push(["err", writeNumber(compare.sigmaKcal)]);
+  return pairs;
 }
 
 /**
@@ -118,9 +181,10 @@ export function writeState(state: WorkbenchState, others?: URLSearchParams): URL
   if (state.weights !== start.weights) pairs.push(["weights", state.weights]);
   if (state.sort !== null)
     pairs.push(["sort", `${state.sort.column}.${state.sort.descending ? "down" : "up"}`]);
+  pairs.push(...compareParts(state.compare, start.compare));
   const params = new URLSearchParams(pairs.length > 0 ? [["v", VERSION], ...pairs] : []);
   for (const [key, value] of others ?? []) {
-    if (!(KEYS as readonly string[]).includes(key)) params.append(key, value);
+    if (!KEYS.includes(key)) params.append(key, value);
   }
   return params;
 }
