@@ -3,7 +3,7 @@ import { href, useFetcher } from "react-router";
 import { Button, SubmitButton } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
 import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
-import { fixed, formatEnergy, withUnit } from "~/lib/format";
+import { ABSENT, fixed, formatEnergy, withUnit } from "~/lib/format";
 import type { IntakeQuestion, QuestionOption as Option } from "~/lib/intake/report";
 import type { ActAnswer } from "./act-answer";
 
@@ -17,15 +17,18 @@ export function AskCards({
   questions: readonly IntakeQuestion[];
   mayAnswer: boolean;
 }) {
-  const open = questions.filter((question) => question.answered === undefined);
+  // Counted over all of them, so that the second stays the second once the first is answered.
+  const open = questions
+    .map((question, k) => ({ question, place: k + 1 }))
+    .filter(({ question }) => question.answered === undefined);
   return (
     <div className="mt-7 grid gap-5">
-      {open.map((question, k) => (
+      {open.map(({ question, place }) => (
         <AskCard
           key={question.id}
           ensembleId={ensembleId}
           question={question}
-          count={`Question ${k + 1} of ${open.length}`}
+          count={`Question ${place} of ${questions.length}`}
           mayAnswer={mayAnswer}
         />
       ))}
@@ -144,24 +147,35 @@ function LevelName({ question, proposed }: { question: IntakeQuestion; proposed:
 
 const VALUES_COLUMNS = "grid-cols-[repeat(3,5.5rem)_4.5rem]";
 
-/** Heads of the figures, where there are any: the first frames and the spread. */
+/** Heads of the figures, where there are any: the first frames and the spread; for units what spread each would mean. */
 function OptionHead({ question }: { question: IntakeQuestion }) {
   const values = Math.max(0, ...question.options.map((option) => option.values?.length ?? 0));
-  if (values === 0) return null;
+  const units = question.options.some((option) => typeof option.spreadKcal === "number");
+  if (values === 0 && !units) return null;
   return (
     <div
       aria-hidden="true"
-      className="flex justify-between gap-4 px-4 pt-2 pb-1 text-xs font-medium text-ink-3 max-sm:hidden sm:px-6"
+      className={`flex justify-between gap-4 px-4 pt-2 pb-1 text-xs font-medium text-ink-3 sm:px-6 ${values > 0 ? "max-sm:hidden" : ""}`}
     >
-      <span className="pl-8">Number</span>
-      <span className={`grid gap-4 text-right ${VALUES_COLUMNS}`}>
-        {[1, 2, 3].map((frame) => (
-          <span key={frame}>{frame <= values ? `Frame ${frame}` : ""}</span>
-        ))}
-        <span>Spread</span>
-      </span>
+      <span className="pl-8">{values > 0 ? "Number" : "Unit"}</span>
+      {values > 0 ? (
+        <span className={`grid gap-4 text-right ${VALUES_COLUMNS}`}>
+          {[1, 2, 3].map((frame) => (
+            <span key={frame}>{frame <= values ? `Frame ${frame}` : ""}</span>
+          ))}
+          <span>Spread</span>
+        </span>
+      ) : (
+        <span>Spread it would mean</span>
+      )}
     </div>
   );
+}
+
+/** The spread as it is written, with the decimals that tell it from nothing; hartrees need more than kilocalories. */
+function spreadText(spread: number): string {
+  const digits = spread >= 1000 || Number.isInteger(spread) ? 0 : spread >= 1 ? 2 : 5;
+  return fixed(spread, digits);
 }
 
 function OptionFigures({ question, option }: { question: IntakeQuestion; option: Option }) {
@@ -187,11 +201,7 @@ function OptionFigures({ question, option }: { question: IntakeQuestion; option:
       ))}
       <span>
         <span className="text-xs text-ink-3 sm:sr-only">spread </span>
-        {spread === undefined || spread === null
-          ? ""
-          : spread > 1000
-            ? fixed(spread, 0)
-            : formatEnergy(spread)}
+        {typeof option.spread === "number" ? spreadText(option.spread) : ABSENT}
       </span>
     </span>
   );

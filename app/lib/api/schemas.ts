@@ -149,6 +149,7 @@ export const questionSchema = z
         detail: z.string().optional(),
         values: z.array(z.string().nullable()).optional(),
         spreadKcal: z.number().nullable().optional(),
+        spread: z.number().nullable().optional(),
         proposed: z.boolean().optional(),
       }),
     ),

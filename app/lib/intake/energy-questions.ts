@@ -53,6 +53,7 @@ function fromOption(
     detail: `${proposed ? proposalWords(candidate, spread, elements.length) : otherWords(candidate)}${missing}`,
     values: [...candidate.first],
     spreadKcal: spread,
+    spread: candidate.count > 1 ? candidate.max - candidate.min : null,
     proposed,
   };
 }

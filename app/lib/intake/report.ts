@@ -41,6 +41,8 @@ export interface QuestionOption {
   detail?: string;
   values?: (string | null)[];
   spreadKcal?: number | null;
+  /** Highest minus lowest of the numbers as they are written, in whatever unit that is. */
+  spread?: number | null;
   proposed?: boolean;
 }
 

@@ -17,6 +17,7 @@ const optionsSchema: z.ZodType<QuestionOption[]> = z.array(
     detail: z.string().optional(),
     values: z.array(z.string().nullable()).optional(),
     spreadKcal: z.number().nullable().optional(),
+    spread: z.number().nullable().optional(),
     proposed: z.boolean().optional(),
   }),
 );
