@@ -1,5 +1,4 @@
 import type { AtomSet } from "~/lib/structure";
-import type { NearPair } from "~/lib/workbench/distances";
 
 export interface DistanceOptions {
   atoms: AtomSet;
@@ -11,9 +10,12 @@ export interface DistanceOptions {
 export type DistanceRequest =
   | { kind: "begin"; id: number; elements: number[]; bonds: number[]; options: DistanceOptions }
   | { kind: "add"; id: number; atoms: number; positions: Float64Array }
-  | { kind: "column"; id: number; reference: number }
-  | { kind: "near"; id: number; most: number };
+  | { kind: "column"; id: number; reference: number };
 
-export type DistanceAnswer =
-  | { kind: "column"; id: number; reference: number; known: number; rmsd: Float64Array; exact: Uint8Array }
-  | { kind: "near"; id: number; pairs: NearPair[] };
+export interface DistanceAnswer {
+  id: number;
+  reference: number;
+  known: number;
+  rmsd: Float64Array;
+  exact: Uint8Array;
+}

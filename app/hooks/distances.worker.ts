@@ -1,5 +1,5 @@
 import { makeGraph } from "~/lib/structure";
-import { ConformerDistances, type NearPair } from "~/lib/workbench/distances";
+import { ConformerDistances } from "~/lib/workbench/distances";
 import type { DistanceAnswer, DistanceRequest } from "./distances-protocol";
 
 /**
@@ -10,7 +10,6 @@ const SLICE_MS = 40;
 
 let set: ConformerDistances | null = null;
 let latest = 0;
-let near: { next: number; most: number; pairs: NearPair[] } | null = null;
 let column: { reference: number; next: number; rmsd: Float64Array; exact: Uint8Array } | null = null;
 let running = false;
 
@@ -18,7 +17,6 @@ self.addEventListener("message", ({ data }: MessageEvent<DistanceRequest>) => {
   if (data.kind === "begin") {
     latest = data.id;
     column = null;
-    near = null;
     const graph = makeGraph(Uint8Array.from(data.elements), data.bonds);
     set = new ConformerDistances(graph, data.options);
     return;
@@ -27,14 +25,14 @@ self.addEventListener("message", ({ data }: MessageEvent<DistanceRequest>) => {
   if (data.kind === "add") {
     const length = data.atoms * 3;
     for (let at = 0; at < data.positions.length; at += length) set.add(data.positions, at);
-  } else if (data.kind === "column") {
+  } else {
     column = {
       reference: data.reference,
       next: 0,
       rmsd: new Float64Array(set.size),
       exact: new Uint8Array(set.size),
     };
-  } else near = { next: 0, most: data.most, pairs: [] };
+  }
   run();
 });
 
@@ -44,7 +42,7 @@ function run(): void {
   const turn = () => {
     const until = performance.now() + SLICE_MS;
     while (performance.now() < until && step()) {}
-    running = column !== null || near !== null;
+    running = column !== null;
     if (running) setTimeout(turn, 0);
   };
   setTimeout(turn, 0);
@@ -60,23 +58,11 @@ function step(): boolean {
       rmsd[next] = found.rmsd;
       exact[next] = found.exact ? 1 : 0;
       column.next += 1;
-      if (column.next % 500 === 0)
-        tell({ kind: "column", id: latest, reference, known: column.next, rmsd, exact });
+      if (column.next % 500 === 0) tell({ id: latest, reference, known: column.next, rmsd, exact });
     }
     if (column.next >= rmsd.length) {
-      tell({ kind: "column", id: latest, reference, known: column.next, rmsd, exact });
+      tell({ id: latest, reference, known: column.next, rmsd, exact });
       column = null;
-    }
-    return true;
-  }
-  if (near !== null) {
-    if (near.next < set.size) {
-      set.nearestFrom(near.next, near.pairs, near.most);
-      near.next += 1;
-    }
-    if (near.next >= set.size) {
-      tell({ kind: "near", id: latest, pairs: near.pairs });
-      near = null;
     }
     return true;
   }

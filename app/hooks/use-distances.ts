@@ -1,5 +1,4 @@
 import { useEffect, useRef, useState } from "react";
-import type { NearPair } from "~/lib/workbench/distances";
 import type { DistanceAnswer, DistanceOptions, DistanceRequest } from "./distances-protocol";
 
 export interface DistanceColumn {
@@ -13,7 +12,7 @@ export interface DistanceColumn {
 }
 
 /**
- * RMSD of every conformer to one of them, and the pairs that lie nearest, worked out on a thread of their own.
+ * RMSD of every conformer to one of them, worked out on a thread of its own.
  *
  * @param set changes with the sift: its molecule, how it compares, and the frames in the order of the distinct set
  * @param positions coordinates by frame; work begins when those of all frames are here
@@ -29,12 +28,10 @@ export function useDistances(
   } | null,
   positions: ReadonlyMap<number, Float64Array>,
   reference: number | null,
-  nearest: number,
-): { column: DistanceColumn | null; pairs: NearPair[] | null } {
+): DistanceColumn | null {
   const worker = useRef<Worker | null>(null);
   const id = useRef(0);
   const [column, setColumn] = useState<DistanceColumn | null>(null);
-  const [pairs, setPairs] = useState<NearPair[] | null>(null);
   const [begun, setBegun] = useState<string | null>(null);
   const ready = set !== null && set.frames.length > 0 && set.frames.every((frame) => positions.has(frame));
 
@@ -42,8 +39,7 @@ export function useDistances(
     const made = new Worker(new URL("./distances.worker.ts", import.meta.url), { type: "module" });
     made.addEventListener("message", ({ data }: MessageEvent<DistanceAnswer>) => {
       if (data.id !== id.current) return;
-      if (data.kind === "near") setPairs(data.pairs);
-      else setColumn({ reference: data.reference, rmsd: data.rmsd, exact: data.exact, known: data.known });
+      setColumn({ reference: data.reference, rmsd: data.rmsd, exact: data.exact, known: data.known });
     });
     worker.current = made;
     return () => {
@@ -55,7 +51,6 @@ export function useDistances(
   // biome-ignore lint/correctness/useExhaustiveDependencies: `set.key` names its contents
   useEffect(() => {
     setColumn(null);
-    setPairs(null);
     setBegun(null);
     if (!ready || set === null || worker.current === null) return;
     id.current += 1;
@@ -77,13 +72,5 @@ export function useDistances(
     worker.current?.postMessage({ kind: "column", id: id.current, reference } satisfies DistanceRequest);
   }, [begun, reference]);
 
-  useEffect(() => {
-    if (begun === null || nearest === 0) return;
-    worker.current?.postMessage({ kind: "near", id: id.current, most: nearest } satisfies DistanceRequest);
-  }, [begun, nearest]);
-
-  return {
-    column: begun === set?.key ? column : null,
-    pairs: begun === set?.key ? pairs : null,
-  };
+  return begun === set?.key ? column : null;
 }

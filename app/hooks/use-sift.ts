@@ -125,34 +125,3 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
 
   return { ask, cancel, asked, error, clearError: () => setError(null) };
 }
-
-/**
- * Runs one sift to its end and counts what it keeps; the page goes on showing its own.
- *
- * @throws Error with the server's words where it is refused, fails or is cancelled
- */
-export async function countKept(
-  ensembleId: string,
-  request: SiftRequest,
-  signal: AbortSignal,
-): Promise<{ id: string; kept: number }> {
-  const response = await fetch(`/files/ensembles/${ensembleId}/sifts`, {
-    method: "POST",
-    headers: { "content-type": "application/json", accept: "application/json" },
-    body: JSON.stringify(request),
-    signal,
-  });
-  if (!response.ok) throw new Error(await problemWords(response));
-  let state = (await response.json()) as SiftState & { result?: { kept: unknown[] } | null };
-  while (!hasEnded(state.status) || !state.result) {
-    if (state.status === "failed" || state.status === "cancelled")
-      throw new Error(state.error ?? `This sift was ${state.status}.`);
-    const next = await fetch(`/files/sifts/${state.id}?wait=20`, {
-      headers: { accept: "application/json" },
-      signal,
-    });
-    if (!next.ok) throw new Error(await problemWords(next));
-    state = (await next.json()) as typeof state;
-  }
-  return { id: state.id, kept: state.result.kept.length };
-}

@@ -28,11 +28,19 @@ export function DistinctSetSection() {
   const [cancelled, setCancelled] = useState(0);
   // The settings as they stand, ahead of the set that is shown.
   const [draft, setDraft] = useState<SiftRequest | null>(null);
+  const moved = useRef<SiftRequest | null>(null);
+  const lastAsked = useRef<SiftRequest | null>(null);
+  moved.current = draft;
   const latest = useRef(change);
   latest.current = change;
   const named = useRef<Promise<void> | null>(null);
   const { ask, cancel, asked, error, clearError } = useNewSift(ensemble.id, async (id) => {
-    if (sift === null || id === sift.id) return;
+    // The thumb has moved on meanwhile: the answer to where it stands now is on its way.
+    if (moved.current !== null && moved.current !== lastAsked.current) return;
+    if (sift === null || id === sift.id) {
+      setDraft(null);
+      return;
+    }
     if (result && gesture.current === "fresh")
       setBefore({ id: sift.id, kept: result.kept.length, tolerance: sift.recipe.rmsdTolerance });
     const replace = gesture.current === "open";
@@ -48,6 +56,7 @@ export function DistinctSetSection() {
   );
   const onAsk = (next: SiftRequest, settled: boolean) => {
     clearError();
+    lastAsked.current = next;
     // An address without a sift means the newest one, which the answer will be: name what is shown, so that "back" finds it.
     if (sift !== null && result !== null && state.sift === null) {
       named.current = change({ sift: sift.id }, { replace: true });
@@ -56,6 +65,7 @@ export function DistinctSetSection() {
       if (settled) gesture.current = "fresh";
     });
   };
+  const fade = `transition-opacity ${draft === null ? "" : "opacity-50"}`;
   const finding = result ? distinctFinding(result) : null;
   const startButton = ensemble.mayCompute ? (
     <Button kind="primary" onClick={() => onAsk(request, true)} disabled={asked !== null}>
@@ -73,7 +83,9 @@ export function DistinctSetSection() {
         <SectionState start={startButton} />
       ) : (
         <>
-          <Finding more={finding.second}>{finding.text}</Finding>
+          <div className={fade} aria-busy={draft !== null}>
+            <Finding more={finding.second}>{finding.text}</Finding>
+          </div>
           {before !== null && before.id !== sift.id ? (
             <p className="mt-1 text-ink-2">
               Before: {plural(before.kept, "shape")} at {withUnit(fixed(before.tolerance, 3), "Å")}.{" "}
@@ -117,23 +129,29 @@ export function DistinctSetSection() {
             draft={draft}
             onTake={
               ensemble.mayCompute
-                ? (rmsdTolerance) => onAsk({ ...(draft ?? request), rmsdTolerance }, true)
+                ? (rmsdTolerance) => {
+                    const next = { ...(draft ?? request), rmsdTolerance };
+                    setDraft(next);
+                    onAsk(next, true);
+                  }
                 : null
             }
           />
-          <FindFrame />
-          <DistinctTable
-            tools={
-              <a
-                className={buttonClass({ size: "sm" })}
-                href={href("/files/sifts/:id/export.xyz", { id: sift.id })}
-                download
-              >
-                <Download aria-hidden="true" />
-                XYZ
-              </a>
-            }
-          />
+          <div className={fade} aria-busy={draft !== null}>
+            <FindFrame />
+            <DistinctTable
+              tools={
+                <a
+                  className={buttonClass({ size: "sm" })}
+                  href={href("/files/sifts/:id/export.xyz", { id: sift.id })}
+                  download
+                >
+                  <Download aria-hidden="true" />
+                  XYZ
+                </a>
+              }
+            />
+          </div>
         </>
       )}
     </section>

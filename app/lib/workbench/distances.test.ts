@@ -1,7 +1,6 @@
-import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { makeGraph } from "../structure.ts";
-import { ConformerDistances, laidOver, type NearPair } from "./distances.ts";
+import { ConformerDistances, laidOver } from "./distances.ts";
 
 // Hydrogen peroxide, HOOH, 1.45 and 0.96 Å, angles of 100°; turned by its torsion. Two equivalent ends.
 const graph = makeGraph(Uint8Array.of(1, 8, 8, 1), [0, 1, 1, 2, 2, 3]);
@@ -54,26 +53,6 @@ describe("distances of conformers", () => {
       Math.hypot(p[3 * i]! - p[3 * j]!, p[3 * i + 1]! - p[3 * j + 1]!, p[3 * i + 2]! - p[3 * j + 2]!);
     for (let i = 0; i < 4; i++)
       for (let j = 0; j < i; j++) expect(spread(back, i, j)).toBeCloseTo(spread(a, i, j), 9);
-  });
-
-  test("the nearest pairs are those of a full search", () => {
-    fc.assert(
-      fc.property(
-        fc.array(fc.integer({ min: -179, max: 180 }), { minLength: 2, maxLength: 12 }),
-        (torsions) => {
-          const distances = set(torsions);
-          const nearest: NearPair[] = [];
-          for (let a = 0; a < torsions.length; a++) distances.nearestFrom(a, nearest, 5);
-          const all: number[] = [];
-          for (let a = 0; a < torsions.length; a++)
-            for (let b = a + 1; b < torsions.length; b++) all.push(distances.between(a, b).rmsd);
-          all.sort((x, y) => x - y);
-          expect(nearest.length).toBe(Math.min(5, all.length));
-          for (const [k, pair] of nearest.entries()) expect(pair.rmsd).toBeCloseTo(all[k]!, 9);
-        },
-      ),
-      { seed: 20261201, numRuns: 60 },
-    );
   });
 
   test("a conformer that was not added is refused", () => {

@@ -15,12 +15,6 @@ export interface Distance {
   exact: boolean;
 }
 
-/** Two conformers of the set, by position, and how far apart they are. */
-export interface NearPair extends Distance {
-  a: number;
-  b: number;
-}
-
 /**
  * Distances among the conformers of one distinct set, with the atoms, symmetry and treatment of mirror images of its
  * recipe. Conformers are added one by one as their coordinates arrive; positions count in the order of adding.
@@ -70,26 +64,6 @@ export class ConformerDistances {
   exchange(a: number, b: number): { distance: Distance; permutation: Int32Array } {
     const distance = this.between(a, b);
     return { distance, permutation: this.rmsd.permutation() };
-  }
-
-  /**
-   * Improves a list of the nearest pairs with all pairs whose first conformer is `a` and whose second comes later.
-   *
-   * @param nearest the best pairs so far, nearest first; changed in place
-   * @param most pairs to keep
-   */
-  nearestFrom(a: number, nearest: NearPair[], most: number): void {
-    const length = this.plan.shapeLength;
-    for (let b = a + 1; b < this.count; b++) {
-      const worst = nearest.length < most ? Number.POSITIVE_INFINITY : nearest.at(-1)!.rmsd;
-      const found = Number.isFinite(worst)
-        ? this.rmsd.decide(this.shapes, a * length, this.shapes, b * length, worst, this.mirror)
-        : this.rmsd.minimum(this.shapes, a * length, this.shapes, b * length, this.mirror);
-      if (found === null || found.rmsd >= worst) continue;
-      const at = nearest.findIndex((pair) => found.rmsd < pair.rmsd);
-      nearest.splice(at < 0 ? nearest.length : at, 0, { a, b, ...found });
-      nearest.length = Math.min(nearest.length, most);
-    }
   }
 
   private check(...positions: number[]): void {

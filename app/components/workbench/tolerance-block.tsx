@@ -1,0 +1,164 @@
+import { useMemo } from "react";
+import { Button } from "~/components/ui/button";
+import { plateauKey, recipeKey, useWholeEnsemble, type WholeEnsemble } from "~/hooks/use-whole-ensemble";
+import { DomainError } from "~/lib/errors";
+import { formatBytes, formatSeconds, plural, withUnit } from "~/lib/format";
+import type { SiftRecipe, SiftRequest } from "~/lib/recipe/recipe";
+import { resolveRecipe } from "~/lib/recipe/resolve";
+import type { EnsembleView } from "~/lib/views";
+import { nearnessHistogram } from "~/lib/workbench/nearness";
+import { countedTolerances, plateauSentence } from "~/lib/workbench/plateau";
+import { NearestPairs, NearestToSelected } from "./near-cut";
+import { NearnessChart } from "./nearness-chart";
+import { PlateauChart, PlateauPlace } from "./plateau-chart";
+import { useWorkbench } from "./workbench-context";
+
+/** What a request means; null where the ensemble does not allow it, which the server says in words. */
+function recipeOf(request: SiftRequest, ensemble: EnsembleView): SiftRecipe | null {
+  try {
+    return resolveRecipe(request, { levels: ensemble.levels, chirality: ensemble.chirality });
+  } catch (error) {
+    if (error instanceof DomainError) return null;
+    throw error;
+  }
+}
+
+/**
+ * Where the tolerance stands: the count against it, how near the frames lie, and the pairs that it just merges or just
+ * keeps apart. While a slider moves the count is worked out here, before the server has been asked.
+ *
+ * @param draft the settings as they stand; null: those of the sift shown
+ */
+export function ToleranceBlock({
+  draft,
+  onTake,
+}: {
+  draft: SiftRequest | null;
+  onTake: ((tolerance: number) => void) | null;
+}) {
+  const { ensemble, sift, result } = useWorkbench();
+  const live = useMemo(
+    () => (draft === null ? (sift?.recipe ?? null) : recipeOf(draft, ensemble)),
+    [draft, ensemble, sift?.recipe],
+  );
+  const shown = useMemo(
+    () =>
+      sift !== null && result !== null
+        ? {
+            id: sift.id,
+            recipe: sift.recipe,
+            kept: result.kept.map(({ frame }) => frame),
+            current: sift.current,
+          }
+        : null,
+    [sift, result],
+  );
+  const whole = useWholeEnsemble(ensemble, shown, live);
+  const nearness = whole.nearness?.key === sift?.id ? whole.nearness : null;
+  const histogram = useMemo(
+    () =>
+      result !== null && sift !== null && nearness !== null
+        ? nearnessHistogram(result, nearness.rmsd, sift.recipe.rmsdTolerance)
+        : null,
+    [result, sift, nearness],
+  );
+  if (sift === null || result === null || live === null) return null;
+  const isShown = recipeKey(live) === recipeKey(sift.recipe);
+  const here = isShown
+    ? { tolerance: live.rmsdTolerance, count: result.kept.length }
+    : whole.count?.key === recipeKey(live)
+      ? { tolerance: live.rmsdTolerance, count: whole.count.kept }
+      : null;
+  return (
+    <>
+      <LiveLine here={here} isShown={isShown} seconds={whole.count?.seconds ?? null} whole={whole} />
+      <div className="mt-6 grid gap-x-10 gap-y-9 xl:grid-cols-2">
+        {sift.current && whole.plateau !== null ? (
+          <PlateauChart
+            counts={whole.plateau.counts}
+            here={here}
+            energyTolerance={live.level === null ? null : live.energyTolerance}
+            stale={whole.plateau.key !== plateauKey(live)}
+            note={plateauNote(whole, here, live)}
+            {...(onTake ? { onTake } : {})}
+          />
+        ) : (
+          <PlateauPlace>
+            <Waiting whole={whole} current={sift.current} />
+          </PlateauPlace>
+        )}
+        {histogram !== null ? (
+          <NearnessChart histogram={histogram} tolerance={live.rmsdTolerance} />
+        ) : (
+          <div className="min-w-0" />
+        )}
+        <NearestPairs nearness={nearness} progress={whole.progress} />
+        <NearestToSelected />
+      </div>
+    </>
+  );
+}
+
+function plateauNote(
+  whole: WholeEnsemble,
+  here: { tolerance: number; count: number } | null,
+  live: SiftRecipe,
+): string | undefined {
+  if (whole.plateau === null) return undefined;
+  const points = countedTolerances(whole.plateau.counts, here);
+  const sentence = here ? plateauSentence(points, here.tolerance) : null;
+  const sifts = whole.plateau.counts.rmsdTolerances.length * whole.plateau.counts.energyFactors.length;
+  const counted = `${plural(sifts, "sift")} of all frames, in ${formatSeconds(Math.max(0.01, whole.plateau.seconds))} in this browser.`;
+  const bound = whole.plateau.counts.exact
+    ? ""
+    : " Where a comparison met its work bound a count may be too large.";
+  const lines =
+    live.level !== null && live.energyTolerance !== null
+      ? " Dotted and dashed: half and double the energy tolerance."
+      : "";
+  return `${sentence ?? ""}${lines} ${counted}${bound}`.trim();
+}
+
+/** The count as the slider stands, in words, before the set that is shown has followed. */
+function LiveLine({
+  here,
+  isShown,
+  seconds,
+  whole,
+}: {
+  here: { tolerance: number; count: number } | null;
+  isShown: boolean;
+  seconds: number | null;
+  whole: WholeEnsemble;
+}) {
+  return (
+    <p className="figures mt-1 min-h-5 text-ink-2" aria-live="polite">
+      {isShown || whole.state !== "ready"
+        ? null
+        : here === null
+          ? "Counting with the new settings."
+          : `${plural(here.count, "shape")} with these settings${seconds === null ? "" : `, counted in ${formatSeconds(Math.max(0.01, seconds))}`}; the set below follows.`}
+    </p>
+  );
+}
+
+function Waiting({ whole, current }: { whole: WholeEnsemble; current: boolean }) {
+  if (!current) return <p>Sift the frames as they are to see this.</p>;
+  if (whole.state === "failed") return <p className="text-danger">{whole.error}</p>;
+  if (whole.state === "waiting")
+    return (
+      <>
+        <p>This takes the coordinates of all accepted frames, {formatBytes(whole.bytes)}, to this browser.</p>
+        <Button size="sm" onClick={whole.load}>
+          Fetch and count
+        </Button>
+      </>
+    );
+  return (
+    <p role="status" className="appear-late">
+      {whole.state === "loading"
+        ? `Fetching ${formatBytes(whole.bytes)} of coordinates.`
+        : `Counting at 12 tolerances from ${withUnit("0.02 to 1.00", "Å")}.`}
+    </p>
+  );
+}
