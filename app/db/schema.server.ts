@@ -472,6 +472,8 @@ export const columns = mysqlTable(
     rule: varchar({ length: 10 }),
     /** Where the numbers come from: "key:energy", "number:3", a file name. */
     origin: varchar({ length: 200 }),
+    /** The kept table or structure file; null for numbers of the ensemble's own files and for computed ones. */
+    sourceId: idColumn().references(() => sources.id),
     /** Frames with a value, accepted or not. */
     count: int().notNull(),
     /** Little-endian doubles by frame number, 0 where missing, then presence bits (frame 1 is bit 0 of byte 0). */
@@ -480,7 +482,26 @@ export const columns = mysqlTable(
     dataSha: sha256Column().notNull(),
     createdAt: timeColumn().notNull(),
   },
-  (t) => [uniqueIndex("columns_name").on(t.ensembleId, t.name)],
+  (t) => [uniqueIndex("columns_name").on(t.ensembleId, t.name), index("columns_source").on(t.sourceId)],
+);
+
+/** Columns that somebody removed: brought back within 30 days, then purged. */
+export const removedColumns = mysqlTable(
+  "removed_columns",
+  {
+    id: idColumn().primaryKey(),
+    ensembleId: idColumn()
+      .notNull()
+      .references(() => ensembles.id, { onDelete: "cascade" }),
+    name: varchar({ length: 120 }).notNull(),
+    /** The row of `columns` without its numbers. */
+    facts: anyJson().notNull(),
+    sourceId: idColumn().references(() => sources.id),
+    data: bytesColumn().notNull(),
+    removedBy: idColumn(),
+    removedAt: timeColumn().notNull(),
+  },
+  (t) => [index("removed_columns_ensemble").on(t.ensembleId, t.removedAt)],
 );
 
 // --- computation ------------------------------------------------------------------------------

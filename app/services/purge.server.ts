@@ -1,11 +1,13 @@
 import { and, eq, inArray, isNotNull, isNull, lt, notExists, sql } from "drizzle-orm";
 import { db } from "../db/client.server.ts";
 import {
+  columns,
   editions,
   ensembleFiles,
   ensembles,
   links,
   outsideStructures,
+  removedColumns,
   sources,
   teams,
   users,
@@ -30,15 +32,14 @@ async function removeEnsembles(where: ReturnType<typeof and>): Promise<void> {
   }
 }
 
-/** Original bytes that no ensemble and no outside structure names any more. */
+/** Original bytes that no ensemble, column and outside structure names any more. */
 async function removeUnusedSources(before: Date): Promise<void> {
   const byFile = db.select().from(ensembleFiles).where(eq(ensembleFiles.sourceId, sources.id));
   const byOutside = db.select().from(outsideStructures).where(eq(outsideStructures.sourceId, sources.id));
-  await db
-    .delete(sources)
-    .where(
-      and(isNotNull(sources.sha256), lt(sources.createdAt, before), notExists(byFile), notExists(byOutside)),
-    );
+  const byColumn = db.select().from(columns).where(eq(columns.sourceId, sources.id));
+  const byRemoved = db.select().from(removedColumns).where(eq(removedColumns.sourceId, sources.id));
+  const unused = [byFile, byOutside, byColumn, byRemoved].map((rows) => notExists(rows));
+  await db.delete(sources).where(and(isNotNull(sources.sha256), lt(sources.createdAt, before), ...unused));
 }
 
 async function removeTeam(teamId: string): Promise<void> {
@@ -64,6 +65,7 @@ async function removeOrphanedEditions(): Promise<void> {
 export async function purgeDeleted(now = new Date()): Promise<void> {
   const before = new Date(now.getTime() - UNDO_DAYS * DAY_MS);
   await removeEnsembles(and(lt(ensembles.deletedAt, before), isNull(ensembles.readingSince)));
+  await db.delete(removedColumns).where(lt(removedColumns.removedAt, before));
   await removeUnusedSources(before);
   const ended = await db.select({ id: teams.id }).from(teams).where(lt(teams.deletedAt, before));
   for (const { id } of ended) await removeTeam(id);
