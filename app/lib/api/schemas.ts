@@ -20,6 +20,8 @@ function numberText(lowest: number, highest: number, words: string) {
     .transform(Number);
 }
 
+const TEMPERATURE_WORDS = "A temperature is a number of K above zero, such as 298.15.";
+
 /** An option of an address: left out or left empty both mean the default. */
 function optional<Schema extends z.ZodType>(schema: Schema) {
   return z
@@ -101,7 +103,7 @@ export const uploadFieldsSchema = z
       .meta({ description: "Unit of these energies; without it the unit must stand beside the number." }),
     energyFrom: z
       .string()
-      .regex(/^(key:.+|field:.+|number:[1-9]\d{0,5}|none)$/s, 'Write "key:NAME", "number:N" or "none".')
+      .regex(/^(key:.+|field:.+|number:[1-9]\d{0,5}|none)$/s, "Write key:NAME, field:NAME, number:N or none.")
       .max(200)
       .optional()
       .meta({
@@ -109,7 +111,7 @@ export const uploadFieldsSchema = z
           "Which number is the energy: key:NAME (the run of characters before = or :, exact in case) or number:N (every number of the comment line counts, from 1); none where the comments hold no energy.",
       }),
     energyKind: z.enum(ENERGY_KINDS).optional().meta({ description: "Default: electronic." }),
-    energyTemperature: numberText(0.001, 100_000, "A temperature in K, such as 298.15.")
+    energyTemperature: numberText(0.001, 100_000, TEMPERATURE_WORDS)
       .optional()
       .meta(
         shownAs(
@@ -231,7 +233,7 @@ export const ensembleListQuerySchema = z.object({
   page: optional(
     z
       .string()
-      .regex(/^[1-9]\d{0,5}$/, "A page number from 1.")
+      .regex(/^[1-9]\d{0,5}$/, "Pages are counted from 1.")
       .transform(Number),
   ).meta(shownAs({ type: "integer", minimum: 1, default: 1 }, "From 1; 50 ensembles a page.")),
 });
@@ -260,7 +262,7 @@ export const rereadRequestSchema = z
   .meta({ id: "RereadRequest", description: "The new answers; what is left out is open again." });
 
 export const decisionRequestSchema = z
-  .strictObject({ reason: z.string().trim().min(1, "Give the reason.").max(500) })
+  .strictObject({ reason: z.string().trim().min(1).max(500) })
   .meta({ id: "DecisionRequest" });
 
 export const decisionAnswerSchema = z
@@ -324,18 +326,25 @@ export const siftSchema = z
   })
   .meta({ id: "Sift" });
 
+/** Seconds that an answer is held at most; who asks for more asks again. */
+const MAX_WAIT_SECONDS = 60;
+
 export const siftQuerySchema = z.object({
-  wait: optional(numberText(0, 60, "Seconds from 0 to 60.")).meta(
+  wait: optional(
+    numberText(0, Number.MAX_VALUE, "Give the seconds to wait as a number, such as 30.").transform(
+      (seconds) => Math.min(seconds, MAX_WAIT_SECONDS),
+    ),
+  ).meta(
     shownAs(
-      { type: "number", minimum: 0, maximum: 60, default: 0 },
-      "Seconds to hold the answer until the sift has ended.",
+      { type: "number", minimum: 0, default: 0 },
+      `Seconds to hold the answer until the sift has ended; more than ${MAX_WAIT_SECONDS} count as ${MAX_WAIT_SECONDS}.`,
     ),
   ),
 });
 
-const temperature = optional(
-  numberText(0.001, 100_000, "A temperature in K above zero, such as 298.15."),
-).meta(shownAs({ type: "number", minimum: 0.001, maximum: 100_000, default: STANDARD_TEMPERATURE_K }, "K"));
+const temperature = optional(numberText(0.001, 100_000, TEMPERATURE_WORDS)).meta(
+  shownAs({ type: "number", minimum: 0.001, maximum: 100_000, default: STANDARD_TEMPERATURE_K }, "K"),
+);
 const weights = optional(z.enum(["auto", "copies", "degeneracy"])).meta(
   shownAs(
     { type: "string", enum: ["auto", "copies", "degeneracy"], default: "auto" },
@@ -349,6 +358,20 @@ export const populationsQuerySchema = z.object({
     shownAs({ type: "string" }, "Id or name; default: the level of the sift."),
   ),
   weights,
+});
+
+export const averagesQuerySchema = z.object({
+  temperature,
+  weights,
+  sigma: optional(numberText(0, 100, "An error of the level in kcal/mol from 0 to 100, such as 0.5.")).meta(
+    shownAs(
+      { type: "number", minimum: 0, maximum: 100 },
+      "Error of the level in kcal/mol (one standard deviation); without it `uncertainty` stays empty.",
+    ),
+  ),
+  level: optional(z.string().max(200)).meta(
+    shownAs({ type: "string" }, "Id or name; default: the level of the sift."),
+  ),
 });
 
 export const exportQuerySchema = z.object({ temperature });

@@ -4,7 +4,8 @@ import { z } from "zod";
 export const DEFAULT_ENERGY_TOLERANCE_KCAL = 0.15;
 export const DEFAULT_RMSD_TOLERANCE = 0.2;
 
-const positive = z.number().finite().positive();
+/** 0 keeps the lowest frame and those equal to it. */
+const window = z.number().finite().nonnegative();
 
 /** What a caller may ask of a sift; everything but `level` may be left out. Unknown fields are refused. */
 export const siftRequestSchema = z
@@ -12,7 +13,7 @@ export const siftRequestSchema = z
     /** Id or name of the level whose energies order the frames; null sifts in file order. */
     level: z.string().min(1).max(200).nullable(),
     /** kcal/mol above the lowest accepted frame; null or absent means no window. */
-    window: positive.nullable().optional(),
+    window: window.nullable().optional(),
     /** kcal/mol; null means none: RMSD alone decides. */
     energyTolerance: z.number().finite().nonnegative().nullable().optional(),
     /** Å. */
@@ -32,7 +33,7 @@ export const siftRecipeSchema = z
     /** Id of the level, or null. */
     level: z.string().nullable(),
     levelName: z.string().nullable(),
-    window: positive.nullable(),
+    window: window.nullable(),
     energyTolerance: z.number().nonnegative().nullable(),
     rmsdTolerance: z.number().nonnegative(),
     atoms: z.enum(["heavy", "heavy+polarH", "all"]),

@@ -1,7 +1,8 @@
 import type { RouterContextProvider } from "react-router";
 import type { z } from "zod";
 import { actorContext, requestIdContext } from "~/context";
-import { DomainError, type Fault } from "~/lib/errors";
+import { faultsOf } from "~/lib/api/fault-words";
+import { DomainError } from "~/lib/errors";
 import type { Actor } from "~/services/auth/access.server";
 import { forApi } from "~/services/http.server";
 
@@ -51,13 +52,7 @@ export function answerCall(answers: Answers): (args: RouteArgs) => Promise<Respo
 }
 
 function invalid(title: string, error: z.ZodError): DomainError {
-  const faults = error.issues.flatMap((issue): Fault[] => {
-    if (issue.code === "unrecognized_keys") {
-      return issue.keys.map((key) => ({ field: key, message: `There is no field "${key}".` }));
-    }
-    const field = issue.path.join(".");
-    return [{ ...(field === "" ? {} : { field }), message: issue.message }];
-  });
+  const faults = faultsOf(error);
   const words = faults.map(({ field, message }) => (field === undefined ? message : `${field}: ${message}`));
   return new DomainError("invalid", title, words.join(" "), { faults });
 }
@@ -68,7 +63,7 @@ export function check<Schema extends z.ZodType>(
   data: unknown,
   title: string,
 ): z.infer<Schema> {
-  const parsed = schema.safeParse(data);
+  const parsed = schema.safeParse(data, { reportInput: true });
   if (!parsed.success) throw invalid(title, parsed.error);
   return parsed.data;
 }

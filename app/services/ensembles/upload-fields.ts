@@ -1,3 +1,4 @@
+import { faultsOf } from "../../lib/api/fault-words.ts";
 import { type UploadFields, uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
 
@@ -16,6 +17,12 @@ export class FormFields {
   }
 
   add(name: string, value: string): void {
+    if (name === "file") {
+      throw invalidField(
+        name,
+        'The field "file" came as text, not as a file. Send the file itself: with curl, -F "file=@run3.xyz", the @ before its name.',
+      );
+    }
     if (!this.allowed.has(name)) {
       throw invalidField(name, `There is no field "${name}". Files go into "file".`);
     }
@@ -30,12 +37,9 @@ export class FormFields {
 
   check(): UploadFields {
     const { team: _, ...rest } = this.values;
-    const read = uploadFieldsSchema.safeParse(rest);
+    const read = uploadFieldsSchema.safeParse(rest, { reportInput: true });
     if (read.success) return read.data;
-    const faults = read.error.issues.map((issue) => ({
-      field: issue.path.join("."),
-      message: issue.message,
-    }));
+    const faults = faultsOf(read.error);
     const detail = faults.map((fault) => `${fault.field}: ${fault.message}`).join(" ");
     throw new DomainError("invalid", "The upload is not right", detail, { faults });
   }
