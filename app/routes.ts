@@ -41,8 +41,10 @@ export default [
   route("files/ensembles/:id/sifts", "routes/files/new-sift.ts"),
   route("files/sifts/:id", "routes/files/sift.ts"),
   route("files/sifts/:id/export.xyz", "routes/files/export-xyz.ts"),
+  route("files/sifts/:id/export.sdf", "routes/files/export-sdf.ts"),
   route("files/sifts/:id/export.csv", "routes/files/export-csv.ts"),
   route("files/sifts/:id/export.json", "routes/files/export-json.ts"),
+  route("files/sifts/:id/averages.csv", "routes/files/averages-csv.ts"),
 
   route("healthz", "routes/healthz.ts"),
   route("readyz", "routes/readyz.ts"),
@@ -59,8 +61,10 @@ export default [
     route("sifts/:id", "routes/api/sift.ts"),
     route("sifts/:id/populations", "routes/api/populations.ts"),
     route("sifts/:id/export.xyz", "routes/api/export-xyz.ts"),
+    route("sifts/:id/export.sdf", "routes/api/export-sdf.ts"),
     route("sifts/:id/export.csv", "routes/api/export-csv.ts"),
     route("sifts/:id/export.json", "routes/api/export-json.ts"),
+    route("sifts/:id/averages.csv", "routes/api/averages-csv.ts"),
     route("*", "routes/api/not-found.ts"),
   ]),
 

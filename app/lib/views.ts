@@ -48,6 +48,8 @@ export interface EnsembleView {
   /** Atomic numbers, and bonds as flat pairs from 0. */
   elements: number[];
   bonds: number[];
+  /** Orders of the bonds and charges of the atoms as the file (or a SMILES) states them; null where it does not. */
+  bondTable: { orders: number[]; charges: number[] } | null;
   levels: LevelView[];
   files: FileView[];
   createdAt: string;

@@ -44,7 +44,7 @@ const upload = {
           .array(z.string().meta({ format: "binary" }))
           .min(1)
           .meta({
-            description: "XYZ or extended XYZ, plain or gzip; frames are numbered on through all files.",
+            description: "XYZ, extended XYZ or SDF, plain or gzip; frames are numbered on through all files.",
           }),
       }),
     },
@@ -161,7 +161,21 @@ const sifts = {
       },
     }),
   },
+  "/sifts/{id}/averages.csv": {
+    get: call("exportAverages", "Boltzmann-weighted averages of all property columns as CSV", {
+      requestParams: { path, query: api.averagesQuerySchema },
+      responses: {
+        "200": {
+          description:
+            "One row a property column: property, unit, rule, average, spread, uncertainty, covered. Where less than 90 % of the population has a value, average, spread and uncertainty are empty.",
+          content: { "text/csv": { schema: z.string() } },
+        },
+        "409": problem("The sift is not done"),
+      },
+    }),
+  },
   "/sifts/{id}/export.xyz": exportCall("XYZ", "chemical/x-xyz"),
+  "/sifts/{id}/export.sdf": exportCall("SDF", "chemical/x-mdl-sdfile"),
   "/sifts/{id}/export.csv": exportCall("CSV", "text/csv"),
   "/sifts/{id}/export.json": exportCall("JSON", "application/json"),
 };

@@ -15,6 +15,11 @@ const HUES: Record<number, string> = {
   35: "fill-atom-br",
   53: "fill-atom-i",
 };
+const ORDER_WORDS = {
+  file: "bond orders of the file",
+  perceived: "bond orders perceived from valences",
+  unknown: "plain graph, bond orders not perceived",
+};
 /** A drawing of this size would be a grey patch. */
 const MAX_HEAVY = 60;
 
@@ -23,26 +28,31 @@ export function FlatMoleculeDrawing({
   elements,
   bonds,
   positions,
+  table = null,
   name,
 }: {
   elements: readonly number[];
   bonds: readonly number[];
   /** Of one frame, for the configuration. */
   positions: Float64Array | null;
+  /** Orders and charges as the file states them. */
+  table?: { orders: readonly number[]; charges: readonly number[] } | null;
   name: string;
 }) {
-  const [drawing, setDrawing] = useState<(FlatDrawing & { perceived: boolean }) | null>(null);
+  const [drawing, setDrawing] = useState<(FlatDrawing & { orders: "file" | "perceived" | "unknown" }) | null>(
+    null,
+  );
   const wanted = elements.filter((element) => element > 1).length <= MAX_HEAVY;
   useEffect(() => {
     if (!wanted) return;
     let left = false;
     import("./draw-molecule.client")
       .then(({ drawMolecule }) => {
-        const molecule = left ? null : drawMolecule(elements, bonds, positions);
+        const molecule = left ? null : drawMolecule(elements, bonds, positions, table);
         if (!molecule || left) return;
         setDrawing({
           ...flatLayout(molecule.atoms, molecule.bonds, BOX, symbolOf),
-          perceived: molecule.ordersPerceived,
+          orders: molecule.orders,
         });
       })
       // Without its drawing the page says everything it has to say.
@@ -50,11 +60,9 @@ export function FlatMoleculeDrawing({
     return () => {
       left = true;
     };
-  }, [wanted, elements, bonds, positions]);
+  }, [wanted, elements, bonds, positions, table]);
   if (!drawing) return null;
-  const words = drawing.perceived
-    ? "bond orders perceived from valences"
-    : "plain graph, bond orders not perceived";
+  const words = ORDER_WORDS[drawing.orders];
   return (
     <svg
       role="img"

@@ -27,7 +27,7 @@ import type { ExportFacts } from "~/services/sifts/describe-exports.server";
 import { OutdatedNote, SectionState } from "./section-state";
 import { useWorkbench } from "./workbench-context";
 
-type Format = "csv" | "xyz" | "json";
+type Format = "csv" | "xyz" | "sdf" | "json";
 
 /** The distinct set as files for the spreadsheet, the next program and a script, and how it was made. */
 export function HandOverSection({ files }: { files: readonly ExportFacts[] | null }) {
@@ -74,6 +74,7 @@ export function HandOverSection({ files }: { files: readonly ExportFacts[] | nul
 const NAMES: Record<Format, string> = {
   csv: "Table, CSV",
   xyz: "Structures, extended XYZ",
+  sdf: "Structures with bonds, SDF",
   json: "Everything, JSON",
 };
 
@@ -83,6 +84,8 @@ function contents(format: Format, conformers: number, atoms: number): ReactNode 
       return `${plural(conformers, "row")}: frame, label, relative energy, degeneracy, symmetry number, copies, found, population. No cell can run as a formula.`;
     case "xyz":
       return `${plural(conformers, "structure")} of ${plural(atoms, "atom")}; each comment line carries energy, unit, level, population, degeneracy, frame and the checksum of its source.`;
+    case "sdf":
+      return `${plural(conformers, "record")} ${atoms > 999 ? "V3000" : "V2000"} with bond orders and charges, the label as title; the same quantities as data fields, coordinates to the last digit.`;
     case "json":
       return "Recipe, units, constants, checksums of the source files, and the conformers, one a line.";
   }
@@ -95,6 +98,7 @@ function Files({ files }: { files: readonly ExportFacts[] | null }) {
   const address = {
     csv: href("/files/sifts/:id/export.csv", { id: sift.id }),
     xyz: href("/files/sifts/:id/export.xyz", { id: sift.id }),
+    sdf: href("/files/sifts/:id/export.sdf", { id: sift.id }),
     json: href("/files/sifts/:id/export.json", { id: sift.id }),
   };
   return (
@@ -114,7 +118,7 @@ function Files({ files }: { files: readonly ExportFacts[] | null }) {
           </tr>
         </thead>
         <tbody>
-          {(["csv", "xyz", "json"] as const).map((format) => {
+          {(["csv", "xyz", "sdf", "json"] as const).map((format) => {
             const facts = files?.find((file) => file.format === format);
             return (
               <Tr key={format}>

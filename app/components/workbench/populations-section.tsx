@@ -6,10 +6,12 @@ import { EnergyLadder } from "~/components/charts/energy-ladder";
 import { MeasureDistribution } from "~/components/charts/measure-distribution";
 import type { Choose } from "~/components/charts/plot";
 import { Finding, SectionHead } from "~/components/ui/finding";
+import { Note } from "~/components/ui/note";
 import { TextLink } from "~/components/ui/text-link";
 import { formatCount, plural } from "~/lib/format";
 import { measureHistogram } from "~/lib/measure/histogram";
 import { measureKind, measureLabel, measureValue } from "~/lib/measure/measure";
+import { temperatureWarning } from "~/lib/thermo/temperature-warning";
 import { outsideWindow } from "~/lib/workbench/conformers";
 import { cumulativePopulation } from "~/lib/workbench/cumulative";
 import { populationsFinding, windowFinding } from "~/lib/workbench/findings";
@@ -54,6 +56,7 @@ export function PopulationsSection() {
                   ? " Zero-point and vibrational contributions are not in them; folded shapes often come out too populated."
                   : ""}
               </p>
+              <TemperatureNote />
               <ThermoFigures populations={populations} />
               <Charts />
             </>
@@ -62,6 +65,18 @@ export function PopulationsSection() {
         </>
       )}
     </section>
+  );
+}
+
+/** Free energies belong to one temperature: at another the populations carry a warning. */
+function TemperatureNote() {
+  const { level, temperatureK } = useWorkbench();
+  const warning = level ? temperatureWarning(level, temperatureK) : null;
+  if (warning === null) return null;
+  return (
+    <Note tone="remark" className="mt-4">
+      <p role="status">{warning}</p>
+    </Note>
   );
 }
 

@@ -52,6 +52,7 @@ export function WorkbenchHeader({
         <FlatMoleculeDrawing
           elements={ensemble.elements}
           bonds={ensemble.bonds}
+          table={ensemble.bondTable}
           positions={positions}
           name={ensemble.name}
         />

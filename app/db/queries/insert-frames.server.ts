@@ -10,6 +10,9 @@ export interface FrameRow {
   indexInShape: number | null;
   label: string | null;
   comment: string;
+  /** JSON texts. */
+  fields: string | null;
+  mapping: string | null;
   state: string;
   readState: string;
   holdReason: string | null;
@@ -17,7 +20,7 @@ export interface FrameRow {
 }
 
 const COLUMNS =
-  "ensemble_id, number, file, line, shape, index_in_shape, label, comment, state, read_state, hold_reason, note";
+  "ensemble_id, number, file, line, shape, index_in_shape, label, comment, fields, mapping, state, read_state, hold_reason, note";
 
 const values = (rows: readonly FrameRow[]) =>
   rows.map((row) => [
@@ -29,6 +32,8 @@ const values = (rows: readonly FrameRow[]) =>
     row.indexInShape,
     row.label,
     row.comment,
+    row.fields,
+    row.mapping,
     row.state,
     row.readState,
     row.holdReason,

@@ -33,6 +33,13 @@ export interface ExportConformer extends KeptConformer {
   readonly energy: number | null;
   /** Fraction, 0 to 1; null where there is none. */
   readonly population: number | null;
+  /** Which atom of its file (from 0) stands at each place, where the file has another order of atoms. */
+  readonly mapping?: readonly number[] | null;
+}
+
+/** The mapping as files carry it, atoms from 1. */
+export function mappingText(mapping: readonly number[]): string {
+  return mapping.map((atom) => atom + 1).join(" ");
 }
 
 /** The file that a frame came from; null where no source lists it. */

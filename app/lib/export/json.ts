@@ -64,7 +64,8 @@ export function* writeJson(set: ExportSet): Generator<string> {
       mirrorRmsd,
       found,
     };
-    yield `${k === 0 ? "" : ","}\n    ${JSON.stringify({ ...line, ...bound, source })}`;
+    const atoms = conformer.mapping ? { sourceAtoms: conformer.mapping.map((atom) => atom + 1) } : {};
+    yield `${k === 0 ? "" : ","}\n    ${JSON.stringify({ ...line, ...bound, source, ...atoms })}`;
   }
   yield "\n  ]\n}\n";
 }

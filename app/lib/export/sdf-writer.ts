@@ -2,7 +2,7 @@ import { EXACT_FIELD } from "../sdf/exact-coordinates.ts";
 import type { BondOrders } from "../sdf/orders.ts";
 import type { EnergyUnit } from "../units.ts";
 import type { CsvColumn } from "./csv.ts";
-import { type ExportConformer, type ExportSet, sourceOf } from "./export-set.ts";
+import { type ExportConformer, type ExportSet, mappingText, sourceOf } from "./export-set.ts";
 import { molBlockWriter, oneLine } from "./mol-block.ts";
 import { exactNumber } from "./xyz-writer.ts";
 
@@ -80,6 +80,7 @@ function ownFields(set: ExportSet, conformer: ExportConformer, orders: BondOrder
     ["FRAME", conformer.frame],
     ["SOURCE_FRAME", source && conformer.frame - source.firstFrame + 1],
     ["SOURCE_SHA256", source?.sha256 ?? null],
+    ["SOURCE_ATOMS", conformer.mapping ? mappingText(conformer.mapping) : null],
     ["BOND_ORDERS", ORDER_WORDS[orders.origin]],
   ];
 }

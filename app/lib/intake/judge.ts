@@ -147,18 +147,20 @@ export class FrameJudge {
   }
 
   private otherBonds(kind: BondKind, near: NearPairs | null): Finding {
+    const belied = kind.seen !== null && this.hasOrder(kind.shape) && !this.looksAlike(kind);
     // The same graph under other numbers is the same molecule, whichever bonds seem to have moved.
-    if (this.sameMolecule.of(kind)) return this.otherOrder(kind);
+    if (!belied && this.sameMolecule.of(kind)) return this.otherOrder(kind);
     if (!this.hasOrder(kind.shape)) return otherIsomer;
+    const { elements, isotopes } = kind.graph;
     const change = describeChange(
-      this.graph,
-      kind.graph,
+      belied ? this.seen : this.graph,
+      belied ? makeGraph(elements, seenBonds(kind), isotopes) : kind.graph,
       (i, j) => near?.pairs.find((pair) => pair.i === i && pair.j === j)?.ratio ?? null,
     );
     return {
       code: "X38",
       reason: "other-species",
-      message: `Another species (${change.kind}): ${change.words}.`,
+      message: `Another species (${change.kind}): ${change.words}.${belied ? " Its bond table does not show it." : ""}`,
       hint: OWN_ENSEMBLE,
     };
   }

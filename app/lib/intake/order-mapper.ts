@@ -1,12 +1,9 @@
 import { graphSignature, isomorphism } from "../chem/signature.ts";
 import type { Graph } from "../structure.ts";
-import { describeChange } from "./bond-changes.ts";
 import type { BondKind } from "./frame-kinds.ts";
 
 /** So many bond sets are tried; a file with more orders than these is no ensemble. */
 const MOST_KINDS = 1000;
-/** A hydrogen that went from one oxygen of a carboxyl group to the other is another species, not another order. */
-const FEW_CHANGES = 2;
 
 /** Finds how the atoms of a frame stand in the group's order, where it is the same molecule (rows X13, S22). */
 export class OrderMapper {
@@ -35,11 +32,7 @@ export class OrderMapper {
     const { graph } = this;
     if (frame.elements.length !== graph.elements.length || this.tried >= MOST_KINDS) return null;
     if (graphSignature(frame) !== this.signature) return null;
-    if (hasOrder(graph, frame)) {
-      if (frame.bonds.every((atom, k) => atom === graph.bonds[k])) return null;
-      const { broken, formed } = describeChange(graph, frame);
-      if (Math.max(broken, formed) <= FEW_CHANGES) return null;
-    }
+    if (hasOrder(graph, frame) && frame.bonds.every((atom, k) => atom === graph.bonds[k])) return null;
     this.tried += 1;
     return isomorphism(graph, frame);
   }

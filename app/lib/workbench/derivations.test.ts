@@ -108,6 +108,7 @@ const ensemble: EnsembleView = {
   series: { id: "dddddddddddddddd", name: "Alkanes" },
   elements: [],
   bonds: [],
+  bondTable: null,
   levels: [],
   files: [],
   createdAt: "2026-12-01T12:00:00Z",

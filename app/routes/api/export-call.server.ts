@@ -25,7 +25,7 @@ function streamOf(pieces: Iterable<string>): ReadableStream<Uint8Array> {
   });
 }
 
-/** The three exports differ in their format only. */
+/** The exports differ in their format only. */
 export function exportCall(make: typeof exportSift, format: ExportFormat) {
   return answerCall({
     async GET({ actor, url, params }) {

@@ -2,51 +2,78 @@ import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage } from "../../lib/intake/report.ts";
 import { SNIFF_BYTES, type Sniffed, sniff } from "../../lib/text/sniff.ts";
 
-/** What is recognised and not read yet; null for what its reader takes, or finds the fault of. */
+/** A file whose first bytes have said which reader takes it. */
+export interface CheckedFile {
+  /** "unknown" is left to the reader of XYZ, which says what the first line lacks. */
+  format: "xyz" | "sdf" | "unknown";
+  /** All bytes, the first ones too. */
+  bytes: AsyncGenerator<Uint8Array, void, undefined>;
+}
+
+/** What is recognised and no structure file; null for what its reader takes, or finds the fault of. */
 function unread(found: Sniffed): string | null {
-  if (found.container === "zip") return "a zip archive";
-  if (found.container === "gzip") return "gzip";
-  if (found.format === "sdf") return "SDF";
+  if (found.container === "zip") return "a zip archive inside of another file";
+  if (found.container === "gzip") return "gzip inside of another file";
   return found.format === "csv" ? "a table" : null;
 }
 
-function checkHead(name: string, head: Uint8Array, remark: (message: IntakeMessage) => void): void {
+function checkHead(
+  name: string,
+  head: Uint8Array,
+  remark: (message: IntakeMessage) => void,
+): CheckedFile["format"] {
   const found = sniff(head, name);
   if (found.refusal) throw new IntakeRejection({ file: name, ...found.refusal });
   const what = unread(found);
-  if (what !== null) {
+  if (what !== null || found.format === "csv") {
     throw new IntakeRejection({
       code: "G10",
       file: name,
-      message: `This is ${what}. This version reads XYZ and extended XYZ, plain or gzip.`,
-      hint: "Write the structures as XYZ and send them again.",
+      message: `This is ${what ?? "a table"}. Structures are read from XYZ or SDF, plain or gzip.`,
+      hint: "Write the structures as XYZ or SDF and send them again.",
     });
   }
   if (found.remark) remark({ ...found.remark, severity: "remark", file: name });
+  return found.format;
 }
 
 /**
- * Passes a file's unpacked bytes on, once the first of them have said that its reader can take them.
+ * Tells by a file's first unpacked bytes which reader takes it.
  *
- * @throws IntakeRejection where they say otherwise (rows G04, G06, G10)
+ * @throws IntakeRejection where none does (rows G04, G06, G10)
  */
-export async function* checkFormat(
+export async function checkFormat(
   name: string,
   bytes: AsyncIterable<Uint8Array>,
   remark: (message: IntakeMessage) => void,
-): AsyncGenerator<Uint8Array, void, undefined> {
-  let head: Uint8Array | null = new Uint8Array(0);
-  for await (const chunk of bytes) {
-    if (head === null) yield chunk;
+): Promise<CheckedFile> {
+  const source = bytes[Symbol.asyncIterator]();
+  const pieces: Uint8Array[] = [];
+  let length = 0;
+  let ended = false;
+  while (length < SNIFF_BYTES && !ended) {
+    const next = await source.next();
+    if (next.done) ended = true;
     else {
-      head = Buffer.concat([head, chunk]);
-      if (head.length < SNIFF_BYTES) continue;
-      checkHead(name, head, remark);
-      yield head;
-      head = null;
+      pieces.push(next.value);
+      length += next.value.length;
     }
   }
-  if (head === null) return;
-  checkHead(name, head, remark);
-  yield head;
+  const head = Buffer.concat(pieces);
+  let format: CheckedFile["format"];
+  try {
+    format = checkHead(name, head, remark);
+  } catch (error) {
+    await source.return?.();
+    throw error;
+  }
+  const whole = async function* () {
+    try {
+      yield head;
+      for (let next = await source.next(); !next.done; next = await source.next()) yield next.value;
+    } finally {
+      await source.return?.();
+    }
+  };
+  return { format, bytes: whole() };
 }

@@ -24,16 +24,30 @@ export type WrittenAnswers = z.infer<typeof answersSchema>;
 
 /** What is kept of the group for a further batch; a person's page shows only the words on it. */
 function identityOf({ group }: ReadResult) {
-  const { charge, multiplicity, configuration } = group;
-  return { charge, multiplicity, configuration };
+  const { charge, multiplicity, configuration, seen } = group;
+  return { charge, multiplicity, configuration, ...(seen ? { seen } : {}) };
+}
+
+/** Orders, charges and radicals as the files state them. */
+function bondTableOf({ classification, graph }: ReadResult): (typeof ensembles.$inferInsert)["bondTable"] {
+  const { table } = classification;
+  if (table?.orders == null) return null;
+  const atoms = graph.elements.length;
+  const list = (values: ArrayLike<number> | null) =>
+    values === null ? new Array<number>(atoms).fill(0) : Array.from(values);
+  return {
+    origin: "file",
+    orders: Array.from(table.orders),
+    charges: list(table.charges),
+    radicals: list(table.radicals),
+  };
 }
 
 /** The scan of the comments, made anew where the number was named after the files. */
 async function scanWith(reading: Reading, result: ReadResult, energyFrom: string | null) {
   const named = energyFrom === "none" ? null : energyFrom;
-  if (reading.energyFrom === named) return result;
-  const names = result.files.map((file) => file.name);
-  return scanComments(reading.ensembleId, names, named);
+  if (reading.options.energyFrom === named) return result;
+  return scanComments(reading.ensembleId, result.files, named);
 }
 
 export interface CompletedReading {
@@ -137,6 +151,8 @@ async function writeMolecule(
       bonds: packBonds(graph.bonds),
       atomLabels: result.atomLabels,
       identity: identityOf(result),
+      bondTable: bondTableOf(result),
+      readerVersion: reading.readerVersion,
       ...chirality,
       ...counts,
       openQuestions,

@@ -8,6 +8,7 @@ import { writeEntry } from "../logbook/write-entry.server.ts";
 import { type CompletedReading, completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
 import { DEFAULT_SERIES, seriesByName } from "./create-series.server.ts";
 import { levelsInUse } from "./intake-rows.server.ts";
+import { endReading } from "./read-stored.server.ts";
 import { answerSameFiles, filesSha, findSameFiles } from "./same-files.server.ts";
 import { siftAfterIntake } from "./sift-after-intake.server.ts";
 import { pointFiles } from "./store-files.server.ts";
@@ -28,7 +29,7 @@ function writtenAnswers(fields: UploadFields): WrittenAnswers {
 
 /** "run3.xyz.gz" becomes "run3"; what else stands behind dots belongs to the name. */
 function nameOfFile(name: string): string {
-  const stem = name.replace(/(\.(xyz|extxyz|txt))?(\.gz)?$/i, "").trim();
+  const stem = name.replace(/(\.(xyz|extxyz|txt|sdf|sd|mol))?(\.gz)?$/i, "").trim();
   return [...(stem === "" ? name : stem)].slice(0, 200).join("");
 }
 
@@ -105,7 +106,9 @@ export async function finishUpload(all: Finish): Promise<TakenIn> {
   if (known) {
     return { ensembleId: answerSameFiles(known, written, all), teamId: grant.teamId, created: false };
   }
-  const result = await upload.reading.end();
+  const kept = upload.reading.files.map(({ name }, at) => ({ name, sourceId: upload.sourceOf(at) }));
+  const { reading, result } = await endReading(upload.reading, grant, kept);
+  upload.reading = reading;
   const done = await completeReading(upload.reading, result, {
     answers: written,
     kindStated: fields.energyKind !== undefined,
@@ -115,7 +118,7 @@ export async function finishUpload(all: Finish): Promise<TakenIn> {
       confirmUnit: interactive,
       knownLevels: interactive ? await levelsInUse(grant.teamId) : [],
     },
-    sources: upload.store.written.map((file) => file.sourceId),
+    sources: kept.map((file) => file.sourceId),
   });
   for (let attempt = 1; ; attempt++) {
     try {

@@ -1,5 +1,6 @@
 import { type FrameRow, insertFrames, updateFrameStates } from "../../db/queries/insert-frames.server.ts";
 import type { FrameState, HoldReason } from "../../lib/intake/report.ts";
+import type { SdfFields } from "../../lib/sdf/frame.ts";
 import { OneAhead } from "./one-ahead.ts";
 
 /** Rows a statement: enough to be quick, few enough for every packet limit. */
@@ -16,6 +17,10 @@ export interface NewFrame {
   indexInShape: number | null;
   label: string | null;
   comment: string;
+  /** Data fields of an SDF record. */
+  fields: SdfFields | null;
+  /** Which atom of the file stands at each place, where the frame was put into another order. */
+  mapping: Int32Array | null;
   state: FrameState;
   holdReason: HoldReason | null;
   note: string | null;
@@ -37,6 +42,12 @@ function cutBytes(text: string, bytes: number): string {
   return whole.length <= bytes ? text : whole.toString("utf8", 0, bytes).replace(/\uFFFD+$/, "");
 }
 
+/** Data fields as their column keeps them: pairs in file order, a tag that stands twice twice. */
+function packFields(fields: SdfFields | null): string | null {
+  if (fields === null || fields.size === 0) return null;
+  return JSON.stringify([...fields].flatMap(([name, values]) => values.map((value) => [name, value])));
+}
+
 const note = (text: string | null) => (text === null ? null : text.slice(0, 1000));
 
 /** Writes rows of frames while their file is read, so that comments of any length never gather in memory. */
@@ -51,15 +62,18 @@ export class FrameWriter {
   }
 
   async add(frame: NewFrame): Promise<void> {
+    const fields = packFields(frame.fields);
     this.rows.push({
       ...frame,
+      fields,
+      mapping: frame.mapping === null ? null : JSON.stringify([...frame.mapping]),
       ensembleId: this.ensembleId,
       label: frame.label === null ? null : [...frame.label].slice(0, 200).join(""),
       comment: cutBytes(frame.comment, COMMENT_BYTES),
       readState: frame.state,
       note: note(frame.note),
     });
-    this.characters += frame.comment.length;
+    this.characters += frame.comment.length + (fields?.length ?? 0);
     if (this.rows.length >= BATCH_ROWS || this.characters >= BATCH_CHARACTERS) await this.flush();
   }
 
@@ -90,6 +104,8 @@ export async function writeDecisions(ensembleId: string, decisions: readonly Fra
         indexInShape: null,
         label: null,
         comment: "",
+        fields: null,
+        mapping: null,
         state: decision.state,
         readState: decision.state,
         holdReason: decision.holdReason,

@@ -1,6 +1,7 @@
 import { and, asc, eq, isNull } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { ensembleFiles, ensembles, series, sources, teams } from "../../db/schema.server.ts";
+import type { Graph } from "../../lib/structure.ts";
 import type { EnsembleView, FileView } from "../../lib/views.ts";
 import { type Actor, accessEnsemble, roleMay } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
@@ -45,6 +46,15 @@ export async function findEnsembleRow(teamId: string, ensembleId: string) {
   return row;
 }
 
+/** Only a table that fits the bonds: they may have been read again since. */
+function statedTable(
+  table: (typeof ensembles.$inferSelect)["bondTable"],
+  { bonds }: Graph,
+): EnsembleView["bondTable"] {
+  if (table === null || table.orders.length !== bonds.length / 2) return null;
+  return { orders: table.orders, charges: table.charges };
+}
+
 /** What every page of an ensemble shows around its sections. */
 export async function loadEnsemble(options: { actor: Actor; ensembleId: string }): Promise<EnsembleView> {
   const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
@@ -69,6 +79,7 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
     series: row.series,
     elements: [...graph.elements],
     bonds: [...graph.bonds],
+    bondTable: statedTable(ensemble.bondTable, graph),
     levels: toLevels(await findColumns(ensemble.id, strip)),
     files,
     createdAt: ensemble.createdAt.toISOString(),

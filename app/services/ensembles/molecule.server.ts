@@ -1,3 +1,5 @@
+import type { ensembles } from "../../db/schema.server.ts";
+import { type BondOrders, bondOrders } from "../../lib/sdf/orders.ts";
 import { type Graph, makeGraph } from "../../lib/structure.ts";
 
 /** Elements and isotopes as a row of `ensembles` keeps them: one byte an atom, then a little-endian uint16 an atom. */
@@ -24,4 +26,17 @@ export function unpackMolecule(row: { atoms: number; elements: Buffer; bonds: Bu
   );
   const bonds = Array.from({ length: row.bonds.length / 4 }, (_, k) => row.bonds.readInt32LE(4 * k));
   return makeGraph(elements, bonds, isotopes);
+}
+
+/** Orders of the ensemble's bonds: those of its file or SMILES, else by valence. */
+export function ordersOf(row: Pick<typeof ensembles.$inferSelect, "bondTable">, graph: Graph): BondOrders {
+  const table = row.bondTable;
+  if (table === null || table.orders.length !== graph.bonds.length / 2) return bondOrders(graph, null);
+  const marked = (values: number[]) => (values.some((value) => value !== 0) ? values : null);
+  return {
+    orders: table.orders,
+    charges: marked(table.charges),
+    radicals: marked(table.radicals),
+    origin: "file",
+  };
 }

@@ -8,9 +8,14 @@ import { DomainError, type Fault } from "../../lib/errors.ts";
 import { formatBytes, formatCount } from "../../lib/format.ts";
 import { type Classification, FrameClassifier } from "../../lib/intake/classify.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
+import { isExtended } from "../../lib/intake/extended-comment.ts";
+import { energiesAsWritten } from "../../lib/intake/field-energies.ts";
 import { formatMessage } from "../../lib/intake/format-message.ts";
+import type { MoleculeGroup } from "../../lib/intake/frame-record.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
 import { IntakeRejection } from "../../lib/intake/reject.ts";
+import { isSdfFrame } from "../../lib/sdf/frame.ts";
+import { SDF_READER_VERSION, SdfReader } from "../../lib/sdf.server.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
 import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
 import { BlockWriter } from "./block-writer.server.ts";
@@ -38,13 +43,30 @@ export interface ReadFile {
   frames: number;
 }
 
+/** What is known before the first file. */
+export interface ReadingOptions {
+  /** The caller's choice of the number; null where there is none. */
+  energyFrom: string | null;
+  /** The molecule that frames are compared with; by default what most of them have in common. */
+  group?: MoleculeGroup;
+  /** Frames of that molecule in another order of atoms are put into its order. */
+  map?: boolean;
+  /** A further batch: frames and files that the ensemble has already. */
+  after?: { frames: number; files: number };
+}
+
 /** Frames, molecule and messages of an upload, once all its files are read. */
 export interface ReadResult {
   classification: Classification;
   group: NonNullable<Classification["group"]>;
   graph: NonNullable<Classification["graph"]>;
+  /** Of these files alone. */
   frames: number;
   files: ReadFile[];
+  /** The shape that became 0, or would have; null where no frame has the group's order of atoms. */
+  shape: number | null;
+  /** Frames of the molecule wait in another order of atoms: they can be mapped now that the group is known. */
+  otherOrder: boolean;
   /** Final states of frames that the judge did not simply accept. */
   decisions: Map<number, FrameDecision>;
   messages: MessageList;
@@ -77,12 +99,13 @@ export class Reading {
   private readonly teamId: string;
   private readonly blocks: BlockWriter;
   private readonly rows: FrameWriter;
-  private readonly classifier = new FrameClassifier();
+  private readonly classifier: FrameClassifier;
   private readonly messages = new MessageList();
   private readonly scan: EnergyScan;
-  /** What the comments were scanned for while the files were read. */
-  readonly energyFrom: string | null;
+  /** What was known before the first file. */
+  readonly options: ReadingOptions;
   private readonly labels = new Map<number, (string | null)[]>();
+  private readonly formats = new Set<string>();
   private frames = 0;
   private sound = 0;
   private extended = 0;
@@ -90,13 +113,18 @@ export class Reading {
   private breath = performance.now();
   private signOfLife = Date.now();
 
-  /** @param energyFrom the caller's choice of the number, where it is known before the first file */
-  constructor(teamId: string, energyFrom: string | null) {
+  constructor(teamId: string, options: ReadingOptions) {
     this.teamId = teamId;
+    this.options = options;
     this.blocks = new BlockWriter(this.ensembleId);
     this.rows = new FrameWriter(this.ensembleId);
-    this.energyFrom = energyFrom;
-    this.scan = new EnergyScan({ from: energyFrom });
+    this.classifier = new FrameClassifier({ group: options.group, map: options.map });
+    this.scan = new EnergyScan({ from: options.energyFrom, maxColumns: env().MAX_COLUMNS });
+  }
+
+  /** Versions of the readers that read the files. */
+  get readerVersion(): string {
+    return [...this.formats].sort().join(", ") || XYZ_READER_VERSION;
   }
 
   /** Makes the row in flight. */
@@ -145,16 +173,21 @@ export class Reading {
     const settings = env();
     const remark = (message: Parameters<MessageList["add"]>[0]) => this.messages.add(message);
     const file = await openFile(source, { file: name, limit: settings.MAX_FILE_BYTES, remark });
-    const reader = new XyzReader({
+    const { format, bytes } = await checkFormat(name, file.bytes, remark);
+    const { after } = this.options;
+    const before = this.frames + (after?.frames ?? 0);
+    const Reader = format === "sdf" ? SdfReader : XyzReader;
+    this.formats.add(format === "sdf" ? SDF_READER_VERSION : XYZ_READER_VERSION);
+    const reader = new Reader({
       file: name,
-      firstNumber: this.frames + 1,
+      firstNumber: before + 1,
       limits: { frames: settings.MAX_FRAMES, atoms: settings.MAX_ATOMS },
     });
-    const position = this.files.length;
-    const before = this.frames;
+    const position = this.files.length + (after?.files ?? 0);
+    const had = this.frames;
     let barren = 0;
     let lastLine = 0;
-    for await (const chunk of checkFormat(name, file.bytes, remark)) {
+    for await (const chunk of bytes) {
       for (let at = 0; at < chunk.length; at += PIECE_BYTES) {
         const piece = chunk.subarray(at, at + PIECE_BYTES);
         const found = reader.push(piece);
@@ -167,8 +200,14 @@ export class Reading {
     }
     await this.takeAll(position, reader.end());
     this.messages.addAll(reader.messages);
-    const format = file.packed ? "XYZ, gzip" : "XYZ";
-    this.files.push({ position, name, format, firstFrame: before + 1, frames: this.frames - before });
+    const kind = format === "sdf" ? "SDF" : "XYZ";
+    this.files.push({
+      position,
+      name,
+      format: file.packed ? `${kind}, gzip` : kind,
+      firstFrame: before + 1,
+      frames: this.frames - had,
+    });
   }
 
   private async takeAll(file: number, found: XyzFrame[]): Promise<void> {
@@ -184,18 +223,19 @@ export class Reading {
   private async take(file: number, frame: XyzFrame): Promise<void> {
     this.frames += 1;
     const { number, line, label, comment, problem } = frame;
-    const row = { number, file, line, label, comment };
+    const sdf = isSdfFrame(frame) ? frame : null;
+    const row = { number, file, line, label, comment, fields: sdf?.fields ?? null };
     if (problem) {
       const { reason, ...message } = problem;
       this.messages.add(message);
-      const note = message.message;
       await this.rows.add({
         ...row,
         shape: null,
         indexInShape: null,
+        mapping: null,
         state: "held",
         holdReason: reason,
-        note,
+        note: message.message,
       });
       return;
     }
@@ -208,18 +248,21 @@ export class Reading {
       positions: frame.positions,
       charge: frame.charge,
       multiplicity: frame.multiplicity,
-      energy: comment === "" ? null : comment,
+      energy: sdf ? energiesAsWritten(sdf.fields) : comment === "" ? null : comment,
+      table: sdf,
     });
-    await this.blocks.add(place.shape, frame.positions);
+    const { shape, indexInShape, mapping } = place;
+    await this.blocks.add(shape, place.positions);
     this.messages.addAll(frame.remarks);
-    this.scan.add({ number, file: frame.file, line }, comment);
+    this.scan.add({ number, file: frame.file, line }, comment, sdf?.fields);
     if (this.sound === 0) this.firstComment = comment;
     this.sound += 1;
-    if (frame.extended) this.extended += 1;
-    if (frame.labels && !this.labels.has(place.shape)) this.labels.set(place.shape, [...frame.labels]);
-    const remark = frame.remarks[0]?.message ?? null;
-    const state = remark === null ? "accepted" : "remarked";
-    await this.rows.add({ ...row, ...place, state, holdReason: null, note: remark });
+    if (sdf ? sdf.fields.size > 0 : isExtended(comment)) this.extended += 1;
+    if (frame.labels && mapping === null && !this.labels.has(shape))
+      this.labels.set(shape, [...frame.labels]);
+    const note = frame.remarks[0]?.message ?? null;
+    const state = note === null ? "accepted" : "remarked";
+    await this.rows.add({ ...row, shape, indexInShape, mapping, state, holdReason: null, note });
   }
 
   /**
@@ -233,8 +276,11 @@ export class Reading {
     await this.rows.end();
     const classification = this.classifier.finish();
     const { group, graph, shape } = classification;
-    if (group === null || graph === null || shape === null) throw this.nothingUsable(classification);
-    if (shape !== 0) await this.makeFirst(shape);
+    const batch = this.options.after !== undefined;
+    if (group === null || graph === null || (shape === null && !batch)) {
+      throw this.nothingUsable(classification);
+    }
+    if (shape !== null && shape !== 0 && !batch) await this.makeFirst(shape);
     const decisions = new Map<number, FrameDecision>();
     for (const verdict of classification.frames) {
       if (verdict.state === "accepted") continue;
@@ -254,12 +300,14 @@ export class Reading {
       graph,
       frames: this.frames,
       files: this.files,
+      shape,
+      otherOrder: classification.frames.some((verdict) => verdict.reason === "other-order"),
       decisions,
       messages: this.messages,
       scan: this.scan,
       firstComment: this.firstComment,
       extended: this.extended * 2 > this.sound,
-      atomLabels: this.labels.get(shape) ?? null,
+      atomLabels: shape === null ? null : (this.labels.get(shape) ?? null),
     };
   }
 

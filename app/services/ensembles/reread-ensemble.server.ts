@@ -11,19 +11,21 @@ import {
 } from "../../db/schema.server.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
-import { log } from "../log.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
 import { completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
 import { countFrames, levelsInUse } from "./intake-rows.server.ts";
-import { Reading } from "./reading.server.ts";
+import { readStored, takeBack } from "./read-stored.server.ts";
 import { siftAfterIntake } from "./sift-after-intake.server.ts";
-import { readSource } from "./source-writer.server.ts";
 
 type At = Grant & { ensembleId: string };
 
 /** Columns that the files of an upload hold themselves; others came from elsewhere and stay. */
-const fromFiles = or(like(columns.origin, "key:%"), like(columns.origin, "number:%"));
+const fromFiles = or(
+  like(columns.origin, "key:%"),
+  like(columns.origin, "number:%"),
+  like(columns.origin, "field:%"),
+);
 
 /** Frames that a person held, with the reason: a decision that outlives the reading. */
 async function heldByHand(tx: Transaction, ensembleId: string) {
@@ -115,7 +117,7 @@ async function adopt(tx: Transaction, at: At, readId: string, questionCount: num
   await moveNew(tx, readId, old.id);
   await replaceColumns(tx, readId, old.id);
   await keepDecisions(tx, old.id, held, released);
-  const { answers, formula, atoms, elements, bonds, atomLabels, identity } = read;
+  const { answers, formula, atoms, elements, bonds, bondTable, atomLabels, identity } = read;
   const { chirality, chiralityNote, readerVersion } = read;
   const molecule = {
     answers,
@@ -123,6 +125,9 @@ async function adopt(tx: Transaction, at: At, readId: string, questionCount: num
     atoms,
     elements,
     bonds,
+    // Orders from a SMILES are no matter of the files.
+    bondTable:
+      bondTable ?? (old.bondTable?.origin === "smiles" && old.bonds.equals(bonds) ? old.bondTable : null),
     atomLabels,
     identity,
     chirality,
@@ -169,11 +174,10 @@ export async function rereadEnsemble(options: {
     .from(ensembleFiles)
     .where(eq(ensembleFiles.ensembleId, at.ensembleId))
     .orderBy(asc(ensembleFiles.position));
-  const reading = new Reading(at.teamId, answers.energyFrom === "none" ? null : answers.energyFrom);
+  const { reading, result } = await readStored(at, files, {
+    energyFrom: answers.energyFrom === "none" ? null : answers.energyFrom,
+  });
   try {
-    await reading.begin(at);
-    for (const file of files) await reading.readFile(file.name, readSource(file.sourceId));
-    const result = await reading.end();
     const done = await completeReading(reading, result, {
       answers,
       kindStated: options.kindStated,
@@ -187,7 +191,7 @@ export async function rereadEnsemble(options: {
     });
     await inTransaction((tx) => adopt(tx, at, reading.ensembleId, done.questions));
   } catch (error) {
-    await reading.discard().catch((second) => log.warn({ err: second }, "reading not taken back"));
+    await takeBack(reading);
     throw error;
   }
   await siftAfterIntake(at);

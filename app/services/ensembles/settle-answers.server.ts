@@ -28,7 +28,7 @@ import {
 } from "./intake-rows.server.ts";
 import { findQuestions } from "./load-intake.server.ts";
 import { unpackMolecule } from "./molecule.server.ts";
-import { scanComments } from "./scan-comments.server.ts";
+import { type ScannedFile, scanComments } from "./scan-comments.server.ts";
 
 export type EnsembleRow = typeof ensembles.$inferSelect;
 
@@ -60,13 +60,18 @@ async function waitingOrAccepted(tx: Transaction, ensembleId: string): Promise<S
   return new Set(rows.map((row) => row.number));
 }
 
-async function fileNames(tx: Transaction, ensembleId: string): Promise<string[]> {
+async function scannedFiles(tx: Transaction, ensembleId: string): Promise<ScannedFile[]> {
   const files = await tx
-    .select({ name: ensembleFiles.name })
+    .select({
+      position: ensembleFiles.position,
+      name: ensembleFiles.name,
+      entry: ensembleFiles.entry,
+      format: ensembleFiles.format,
+    })
     .from(ensembleFiles)
     .where(eq(ensembleFiles.ensembleId, ensembleId))
     .orderBy(asc(ensembleFiles.position));
-  return files.map((file) => file.name);
+  return files.map(({ position, name, entry, format }) => ({ position, name: entry ?? name, format }));
 }
 
 interface Decided {
@@ -84,7 +89,7 @@ async function decide(
 ): Promise<Decided> {
   const answers = answersSoFar(ensemble, asked);
   const named = answers.energyFrom === NO_ENERGY ? null : answers.energyFrom;
-  const scanned = await scanComments(ensemble.id, await fileNames(tx, ensemble.id), named, tx);
+  const scanned = await scanComments(ensemble.id, await scannedFiles(tx, ensemble.id), named, tx);
   const used = await waitingOrAccepted(tx, ensemble.id);
   const accepted = (frame: number) => used.has(frame);
   const findings = scanned.scan.finish(accepted);

@@ -32,7 +32,7 @@ export async function takeInFor(options: {
         throw invalidField(part.name, `There is no field "${part.name}". Files go into "file".`);
       grant ??= await grantOf(fields.get("team"));
       if (upload === null) {
-        upload = new Upload(grant, fields.get("energyFrom"));
+        upload = new Upload(grant, { energyFrom: fields.get("energyFrom") });
         await upload.begin();
       }
       await upload.readFile(part);

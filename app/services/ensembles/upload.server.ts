@@ -2,19 +2,28 @@ import { escapeControls } from "../../lib/text/escape.ts";
 import type { Grant } from "../auth/access.server.ts";
 import { log } from "../log.server.ts";
 import { type FormPart, fileBytes } from "./read-multipart.server.ts";
-import { Reading } from "./reading.server.ts";
+import { Reading, type ReadingOptions } from "./reading.server.ts";
 import { FileStore } from "./store-files.server.ts";
 
 /** One upload on its way: what it wrote so far, and how to take that back. */
 export class Upload {
-  readonly reading: Reading;
+  reading: Reading;
   readonly store: FileStore;
   private readonly grant: Grant;
 
-  constructor(grant: Grant, energyFrom: string | null) {
+  constructor(grant: Grant, options: ReadingOptions) {
+    const { energyFrom } = options;
     this.grant = grant;
-    this.reading = new Reading(grant.teamId, energyFrom === "none" ? null : energyFrom);
+    this.reading = new Reading(grant.teamId, {
+      ...options,
+      energyFrom: energyFrom === "none" ? null : energyFrom,
+    });
     this.store = new FileStore(grant.teamId);
+  }
+
+  /** Id of the kept bytes of a file of the reading. */
+  sourceOf(at: number): string {
+    return this.store.written[at]?.sourceId ?? "";
   }
 
   begin(): Promise<void> {

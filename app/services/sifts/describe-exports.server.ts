@@ -3,9 +3,9 @@ import { type Actor, accessSift } from "../auth/access.server.ts";
 import { type ExportFormat, openExport } from "./export-sift.server.ts";
 import { findSift } from "./find-sift.server.ts";
 
-/** Larger sets are not written three times only to be measured. */
+/** Larger sets are not written four times only to be measured. */
 const MOST_CONFORMERS = 2_000;
-const FORMATS: readonly ExportFormat[] = ["csv", "xyz", "json"];
+const FORMATS: readonly ExportFormat[] = ["csv", "xyz", "sdf", "json"];
 
 export interface ExportFacts {
   format: ExportFormat;

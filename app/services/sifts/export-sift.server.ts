@@ -5,6 +5,7 @@ import { unpackColumn } from "../../lib/column-data.ts";
 import { type CsvColumn, writeCsv } from "../../lib/export/csv.ts";
 import type { ExportConformer, ExportSet } from "../../lib/export/export-set.ts";
 import { writeJson } from "../../lib/export/json.ts";
+import { writeSdf } from "../../lib/export/sdf-writer.ts";
 import { writeXyz } from "../../lib/export/xyz-writer.ts";
 import type { KeptConformer } from "../../lib/recipe/result.ts";
 import { distinctPopulations } from "../../lib/thermo/populations.ts";
@@ -12,15 +13,16 @@ import { ENERGY_UNITS, STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
 import { type Actor, accessSift, type Grant } from "../auth/access.server.ts";
 import { findEnsembleRow, findFiles } from "../ensembles/load-ensemble.server.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
-import { unpackMolecule } from "../ensembles/molecule.server.ts";
+import { ordersOf, unpackMolecule } from "../ensembles/molecule.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { type FoundSift, findSift } from "./find-sift.server.ts";
 import { needResult } from "./populations.server.ts";
 
-export type ExportFormat = "xyz" | "csv" | "json";
+export type ExportFormat = "xyz" | "sdf" | "csv" | "json";
 
 const TYPES: Record<ExportFormat, string> = {
   xyz: "chemical/x-xyz; charset=utf-8",
+  sdf: "chemical/x-mdl-sdfile; charset=utf-8",
   csv: "text/csv; charset=utf-8",
   json: "application/json; charset=utf-8",
 };
@@ -35,13 +37,18 @@ type ColumnRow = typeof columns.$inferSelect;
 
 /** What of its frame goes along with a conformer. */
 async function frameFacts(ensembleId: string, numbers: number[]) {
-  const facts = new Map<number, { label: string | null; index: number }>();
+  const facts = new Map<number, { label: string | null; index: number; mapping: number[] | null }>();
   for (let at = 0; at < numbers.length; at += 5_000) {
     const rows = await db
-      .select({ number: frames.number, label: frames.label, index: frames.indexInShape })
+      .select({
+        number: frames.number,
+        label: frames.label,
+        index: frames.indexInShape,
+        mapping: frames.mapping,
+      })
       .from(frames)
       .where(and(eq(frames.ensembleId, ensembleId), inArray(frames.number, numbers.slice(at, at + 5_000))));
-    for (const { number, label, index } of rows) facts.set(number, { label, index: index ?? -1 });
+    for (const { number, index, ...row } of rows) facts.set(number, { ...row, index: index ?? -1 });
   }
   return facts;
 }
@@ -88,6 +95,7 @@ async function collect(grant: Grant & { ensembleId: string }, sift: FoundSift, t
       label: facts.get(conformer.frame)?.label ?? null,
       energy: energies[row] ?? null,
       population: weighed?.populations[row] ?? null,
+      mapping: facts.get(conformer.frame)?.mapping ?? null,
     }),
   );
   const graph = unpackMolecule(ensemble);
@@ -107,18 +115,19 @@ async function collect(grant: Grant & { ensembleId: string }, sift: FoundSift, t
   return { set, ensemble, columns: all, indices };
 }
 
-async function xyzPieces(
+/** Coordinates by frame number. */
+async function positionsBy(
   set: ExportSet,
   ensemble: typeof ensembles.$inferSelect,
   indices: number[],
-): Promise<Iterable<string>> {
+): Promise<(frame: number) => Float64Array> {
   const positions = await loadPositions(ensemble.id, ensemble.atoms, indices);
   const length = 3 * ensemble.atoms;
   const rowOf = new Map(set.conformers.map(({ frame }, row) => [frame, row]));
-  return writeXyz(set, (frame) => {
+  return (frame) => {
     const from = (rowOf.get(frame) ?? 0) * length;
     return positions.subarray(from, from + length);
-  });
+  };
 }
 
 function csvColumns(all: ColumnRow[], frameCount: number, set: ExportSet): CsvColumn[] {
@@ -127,6 +136,21 @@ function csvColumns(all: ColumnRow[], frameCount: number, set: ExportSet): CsvCo
     unit: column.unit,
     values: valuesOf(column, frameCount, [...set.conformers]),
   }));
+}
+
+async function piecesOf(
+  { set, ensemble, columns: all, indices }: Awaited<ReturnType<typeof collect>>,
+  format: ExportFormat,
+): Promise<Iterable<string>> {
+  if (format === "json") return writeJson(set);
+  const quantities = csvColumns(all, ensemble.frames, set);
+  if (format === "csv") return writeCsv(set, quantities);
+  const positions = await positionsBy(set, ensemble, indices);
+  if (format === "xyz") return writeXyz(set, positions);
+  const graph = unpackMolecule(ensemble);
+  // The level of the sift goes along as the energy of each record.
+  const further = quantities.filter((_, k) => all[k]?.name !== set.level?.name);
+  return writeSdf(set, { bonds: graph.bonds, orders: ordersOf(ensemble, graph) }, positions, further);
 }
 
 /**
@@ -141,13 +165,8 @@ export async function openExport(
   temperature = STANDARD_TEMPERATURE_K,
 ): Promise<ExportFile> {
   const found = await collect(grant, sift, temperature);
-  const { set, ensemble, indices } = found;
-  const pieces =
-    format === "xyz"
-      ? await xyzPieces(set, ensemble, indices)
-      : format === "csv"
-        ? writeCsv(set, csvColumns(found.columns, ensemble.frames, set))
-        : writeJson(set);
+  const { ensemble } = found;
+  const pieces = await piecesOf(found, format);
   return { name: `${ensemble.name} distinct set.${format}`, type: TYPES[format], pieces };
 }
 

@@ -2,6 +2,7 @@ import type { PopulationsAnswer } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
 import type { KeptConformer, SiftResult } from "../../lib/recipe/result.ts";
 import { distinctPopulations } from "../../lib/thermo/populations.ts";
+import { temperatureWarning } from "../../lib/thermo/temperature-warning.ts";
 import { ENERGY_UNITS, kcalPer, STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
 import type { LevelView } from "../../lib/views.ts";
 import { type Actor, accessSift } from "../auth/access.server.ts";
@@ -29,7 +30,8 @@ function invalid(field: string, message: string): DomainError {
   return new DomainError("invalid", "No populations", message, { faults: [{ field, message }] });
 }
 
-function levelOf(sift: FoundSift, levels: LevelView[], asked: string | undefined): LevelView {
+/** The level that weighs the set: the one asked for, else that of the sift. */
+export function levelOf(sift: FoundSift, levels: LevelView[], asked: string | undefined): LevelView {
   if (sift.recipe.level === null) {
     throw invalid(
       "level",
@@ -94,6 +96,7 @@ export async function loadPopulations(options: {
   if (weighed === null) {
     throw invalid("level", `No conformer of this distinct set has an energy at "${level.name}".`);
   }
+  const warning = temperatureWarning(level, temperature);
   return {
     temperature,
     level: level.id,
@@ -112,5 +115,6 @@ export async function loadPopulations(options: {
     entropy: weighed.entropy,
     heatCapacity: weighed.heatCapacity,
     effectiveCount: weighed.effectiveCount,
+    warnings: warning === null ? [] : [{ code: "E13", message: warning }],
   };
 }
