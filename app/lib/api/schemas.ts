@@ -67,6 +67,12 @@ export const problemSchema = z
   })
   .meta({ id: "Problem", description: "RFC 9457, application/problem+json" });
 
+/** What a caller should know of an answer that is right all the same: nothing that was asked is passed over in silence. */
+export const warningsSchema = z
+  .array(z.object({ code: z.string(), message: z.string() }).meta({ id: "Warning" }))
+  .meta({ description: "What is to be known beside the answer; empty where there is nothing." });
+export type Warnings = z.infer<typeof warningsSchema>;
+
 // --- ensembles ---------------------------------------------------------------------------------
 
 export const ENERGY_KINDS = ["electronic", "zero-point", "enthalpy", "free"] as const;
@@ -108,7 +114,7 @@ export const uploadFieldsSchema = z
       .optional()
       .meta({
         description:
-          "Which number is the energy: key:NAME (the run of characters before = or :, exact in case) or number:N (every number of the comment line counts, from 1); none where the comments hold no energy.",
+          "Which number is the energy: key:NAME (the run of characters before = or :, exact in case), number:N (every number of the comment line counts, from 1) or field:NAME (a data field of an SDF, exact in case); none where the files hold no energy.",
       }),
     energyKind: z.enum(ENERGY_KINDS).optional().meta({ description: "Default: electronic." }),
     energyTemperature: numberText(0.001, 100_000, TEMPERATURE_WORDS)
@@ -278,7 +284,12 @@ export const decisionAnswerSchema = z
 export const siftStatusSchema = z.enum(["queued", "running", "done", "failed", "cancelled"]);
 
 export const siftAcceptedSchema = z
-  .object({ id, status: siftStatusSchema, progress: z.number().min(0).max(1) })
+  .object({
+    id,
+    status: siftStatusSchema,
+    progress: z.number().min(0).max(1),
+    warnings: warningsSchema.optional(),
+  })
   .meta({ id: "SiftAccepted" });
 
 export const siftResultSchema = z
@@ -397,6 +408,7 @@ export const populationsSchema = z
     entropy: z.number().meta({ description: "cal/(mol K)" }),
     heatCapacity: z.number().meta({ description: "cal/(mol K)" }),
     effectiveCount: z.number().meta({ description: "exp(entropy/R), microstates." }),
+    warnings: warningsSchema,
   })
   .meta({ id: "Populations" });
 export type PopulationsAnswer = z.infer<typeof populationsSchema>;
