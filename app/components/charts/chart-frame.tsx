@@ -3,7 +3,7 @@ import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { fixed } from "~/lib/format";
 import { toCsv } from "~/lib/workbench/tsv";
-import { figureSvg, saveText } from "./export-figure";
+import { figureJson, figureSvg, savePng, saveText } from "./export-figure";
 
 export interface FigureColumn {
   name: string;
@@ -24,7 +24,7 @@ const TOOL =
 const ROWS_WITHOUT_SCRIPT = 200;
 const ROWS_SHOWN = 500;
 
-/** Title, what is drawn, and the same numbers as a table, as CSV and as an SVG file. */
+/** Title, what is drawn, and the same numbers as a table, as CSV and JSON, and the drawing as an SVG or PNG file. */
 export function ChartFrame({
   title,
   data,
@@ -74,6 +74,21 @@ export function ChartFrame({
             }}
           >
             SVG<span className="sr-only"> of {title}</span>
+          </TextButton>
+          <TextButton
+            className={TOOL}
+            onClick={() => {
+              const svg = figure.current?.querySelector("svg");
+              if (svg) void savePng(`${fileName}.png`, svg, title);
+            }}
+          >
+            PNG<span className="sr-only"> of {title}</span>
+          </TextButton>
+          <TextButton
+            className={TOOL}
+            onClick={() => saveText(`${fileName}.json`, "application/json", figureJson(title, data))}
+          >
+            JSON<span className="sr-only"> of {title}</span>
           </TextButton>
         </span>
       </figcaption>

@@ -61,9 +61,48 @@ function writeStyles(from: Element, to: Element): void {
   }
 }
 
+/** Pixels of the PNG for one of the page. */
+const PNG_SCALE = 2;
+
+/** The figure as a PNG file at twice its size on the page. The browser draws the SVG file, so both show the same. */
+export async function savePng(name: string, svg: SVGSVGElement, title: string): Promise<void> {
+  const { width, height } = svg.getBoundingClientRect();
+  const address = URL.createObjectURL(new Blob([figureSvg(svg, title)], { type: "image/svg+xml" }));
+  try {
+    const image = new Image();
+    image.src = address;
+    await image.decode();
+    const canvas = document.createElement("canvas");
+    canvas.width = Math.round(PNG_SCALE * width);
+    canvas.height = Math.round(PNG_SCALE * height);
+    canvas.getContext("2d")?.drawImage(image, 0, 0, canvas.width, canvas.height);
+    const png = await new Promise<Blob | null>((done) => canvas.toBlob(done, "image/png"));
+    if (png) saveBlob(name, png);
+  } finally {
+    URL.revokeObjectURL(address);
+  }
+}
+
+/** The numbers behind a figure as JSON: one object a row, its keys with their units; absent is null. */
+export function figureJson(
+  title: string,
+  data: {
+    columns: readonly { name: string; unit?: string }[];
+    rows: readonly (readonly (string | number | null)[])[];
+  },
+): string {
+  const keys = data.columns.map(({ name, unit }) => (unit ? `${name} [${unit}]` : name));
+  const rows = data.rows.map((row) => Object.fromEntries(keys.map((key, c) => [key, row[c] ?? null])));
+  return `${JSON.stringify({ title, rows }, null, 1)}\n`;
+}
+
 /** Hands a text to the browser as a file. */
 export function saveText(name: string, type: string, text: string): void {
-  const address = URL.createObjectURL(new Blob([text], { type: `${type};charset=utf-8` }));
+  saveBlob(name, new Blob([text], { type: `${type};charset=utf-8` }));
+}
+
+function saveBlob(name: string, blob: Blob): void {
+  const address = URL.createObjectURL(blob);
   const link = document.createElement("a");
   link.href = address;
   link.download = name;

@@ -16,6 +16,7 @@ import {
   XAxis,
   YAxis,
 } from "recharts";
+import { LevelGlyph } from "~/components/ui/level-marker";
 import { fixed } from "~/lib/format";
 import { roundTicks, tickDigits } from "~/lib/workbench/ticks";
 
@@ -26,6 +27,10 @@ export interface Axis {
   high: number;
   /** Round values; found by itself where left out. */
   ticks?: readonly number[];
+  /** How a tick is written, where not as a number with the decimals that all need. */
+  tickText?: (value: number) => string;
+  /** Level of theory whose marker stands before the title. */
+  ordinal?: number;
 }
 
 /** A place in the chart that takes focus and says its value. */
@@ -129,7 +134,7 @@ export function Plot({
               axisLine={AXIS_LINE}
               tickLine={AXIS_LINE}
               tick={TICK}
-              tickFormatter={(value: number) => fixed(value, tickDigits(xTicks))}
+              tickFormatter={x.tickText ?? ((value: number) => fixed(value, tickDigits(xTicks)))}
             />
             <YAxis
               type="number"
@@ -143,9 +148,9 @@ export function Plot({
               axisLine={AXIS_LINE}
               tickLine={AXIS_LINE}
               tick={TICK}
-              tickFormatter={(value: number) => fixed(value, tickDigits(yTicks))}
+              tickFormatter={y.tickText ?? ((value: number) => fixed(value, tickDigits(yTicks)))}
             />
-            <AxisTitles x={x.title} y={y.title} height={height} />
+            <AxisTitles x={x} y={y} height={height} />
             {children}
             <PointLayer
               points={points}
@@ -239,16 +244,27 @@ export function ChartText({
   );
 }
 
-function AxisTitles({ x, y, height }: { x: string; y: string; height: number }) {
+/** Width of a letter of 12 px: how far left of a title that ends at the right its marker stands. */
+const LETTER = 6.1;
+
+function AxisTitles({ x, y, height }: { x: Axis; y: Axis; height: number }) {
   const plot = usePlot();
   if (!plot) return null;
   return (
     <>
-      <ChartText x={0} y={12}>
-        {y}
+      {y.ordinal ? <LevelGlyph ordinal={y.ordinal} x={0} y={2} /> : null}
+      <ChartText x={y.ordinal ? 18 : 0} y={12}>
+        {y.title}
       </ChartText>
+      {x.ordinal ? (
+        <LevelGlyph
+          ordinal={x.ordinal}
+          x={Math.max(0, plot.right - LETTER * x.title.length - 20)}
+          y={height - 12}
+        />
+      ) : null}
       <ChartText x={plot.right} y={height - 2} end>
-        {x}
+        {x.title}
       </ChartText>
     </>
   );

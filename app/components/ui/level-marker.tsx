@@ -34,6 +34,26 @@ export function LevelMarker({ ordinal, className = "" }: { ordinal: number; clas
   );
 }
 
+/** The same marker inside a drawing, 12 px wide, its upper left corner at (x, y). */
+export function LevelGlyph({ ordinal, x, y }: { ordinal: number; x: number; y: number }) {
+  const colour = levelColour(ordinal);
+  return (
+    <g
+      transform={`translate(${x} ${y})`}
+      fill={ordinal > 6 ? "none" : colour}
+      stroke={ordinal > 6 ? colour : "none"}
+      strokeWidth={2}
+    >
+      {SHAPES[(ordinal - 1) % 6]}
+    </g>
+  );
+}
+
+/** CSS colour of a level's hue, by order of arrival. */
+export function levelColour(ordinal: number): string {
+  return `var(--color-level-${((ordinal - 1) % 6) + 1})`;
+}
+
 /** Marker and name of a level. */
 export function LevelName({ name, ordinal }: { name: string; ordinal: number }) {
   return (

@@ -1,0 +1,22 @@
+import { expect, it } from "vitest";
+import { packEnergies, pairLevels, unpackEnergies } from "./level-energies.ts";
+
+const column = (values: (number | null)[]) => ({
+  values: Float64Array.from(values, (v) => v ?? 0),
+  present: Uint8Array.from(values, (v) => (v === null ? 0 : 1)),
+});
+
+it("travels as text without losing a bit", () => {
+  const values = Array.from({ length: 20_000 }, (_, i) => (i % 7 === 0 ? null : Math.sqrt(i) / 3));
+  const read = unpackEnergies(packEnergies("a", column(values)), values.length);
+  expect(read).toEqual(column(values));
+});
+
+it("keeps those with both energies and counts who lacks which", () => {
+  const members = [1, 2, 3, 4].map((frame) => ({ frame, name: `c${frame}`, weight: frame }));
+  const paired = pairLevels(members, column([0, 1, null, null]), column([5, null, 6, null]));
+  expect(paired.members.map((m) => m.frame)).toEqual([1]);
+  expect([paired.level[0], paired.reference[0], paired.weights[0]]).toEqual([0, 5, 1]);
+  expect(paired).toMatchObject({ missingLevel: 2, missingReference: 2 });
+  expect(paired.left.map((m) => m.name)).toEqual(["c2", "c3", "c4"]);
+});
