@@ -2,15 +2,17 @@ import { DomainError, type Fault } from "../errors.ts";
 import { ENERGY_UNITS, type EnergyUnit } from "../units.ts";
 import type { EnergyKind } from "../views.ts";
 import type { EnergyCandidate, EnergyFindings } from "./energies.ts";
+import { placeWords } from "./energy-column.ts";
 import { energyFromQuestion, energyUnitQuestion, unitsInWords } from "./energy-questions.ts";
 import { unreadableEnergy } from "./energy-remarks.ts";
 import { findUnit } from "./energy-unit-finding.ts";
+import { suggestLevel } from "./level-name.ts";
 import type { IntakeMessage, IntakeQuestion, QuestionOption } from "./report.ts";
 
 /** What has been said about the energies of an upload; null where nobody did. */
 export interface EnergyAnswers {
   energyUnit: string | null;
-  /** `key:NAME`, `number:N`, or "none": the comments hold no energy. */
+  /** `key:NAME`, `number:N`, `field:NAME`, or "none": the files hold no energy. */
   energyFrom: string | null;
   level: string | null;
   energyKind: EnergyKind;
@@ -103,7 +105,7 @@ function refuseMixed(candidate: EnergyCandidate, stated: EnergyUnit | null, mode
 
 function refuseOpen(candidate: EnergyCandidate, unit: EnergyUnit | null, level: string | null): void {
   const shown = candidate.first.find((text) => text !== null) ?? "";
-  const what = `The comment lines hold an energy, ${nameOf(candidate)} (${shown} in the first frames)`;
+  const what = `The ${placeWords(candidate.from)} hold an energy, ${nameOf(candidate)} (${shown} in the first frames)`;
   const faults: Fault[] = [];
   if (unit === null) {
     faults.push({
@@ -142,13 +144,14 @@ function unusedAnswers(findings: EnergyFindings, answers: EnergyAnswers): Intake
   if (stated === null && findings.unreadable === null) return [];
   const what =
     findings.unreadable === null ? "hold no energy" : `hold no number as “${findings.unreadable.key}”`;
+  const where = findings.rows.some((row) => row.textLine !== undefined) ? "data fields" : "comment lines";
   return [
     {
       code: "E10",
       severity: "remark",
       file: findings.rows[0]?.file ?? "",
       ...(findings.unreadable === null ? {} : { found: findings.unreadable.found }),
-      message: `The comment lines ${what}, so ${stated ?? "no level was made"}.`,
+      message: `The ${where} ${what}, so ${stated ?? "no level was made"}.`,
       hint: "If one of their numbers is the energy, name it with energyFrom and read the files again.",
     },
   ];
@@ -198,7 +201,7 @@ function askUnit(candidate: EnergyCandidate, finding: ReturnType<typeof findUnit
 const MAX_LEVELS = 8;
 
 function askLevel(candidate: EnergyCandidate, mode: DecisionMode): IntakeQuestion {
-  const inFile = levelWords(mode.comment, candidate.key);
+  const inFile = namedLevels(candidate, mode.comment);
   const names = [...new Set([...inFile, ...mode.knownLevels])].slice(0, MAX_LEVELS);
   return {
     id: "level",
@@ -209,10 +212,17 @@ function askLevel(candidate: EnergyCandidate, mode: DecisionMode): IntakeQuestio
     options: names.map((name, at) => ({
       id: name,
       text: name,
-      detail: inFile.includes(name) ? "Stands in the comment line" : "In use in this team",
+      detail: inFile.includes(name) ? `Stands in the ${placeWords(candidate.from)}` : "In use in this team",
       proposed: at === 0 && inFile.length > 0,
     })),
   };
+}
+
+/** What names a method: the tag of a data field, else the words of the comment line. */
+function namedLevels({ from, key }: EnergyCandidate, comment: string): string[] {
+  if (!from.startsWith("field:")) return levelWords(comment, key);
+  const named = suggestLevel([key ?? "", comment]);
+  return named === null ? [] : [named];
 }
 
 /** Words of a comment line that look like the name of a method: `MMFF94`, `B3LYP/6-31G(d)`, `HF/def2-SVP`. */

@@ -148,7 +148,7 @@ describe("the rule that names the number", () => {
       expect(() => scan(comments, from)).toThrow(DomainError);
     }
     for (const from of ["energy", "key:", "number:0", "number:x", "column:3", ""]) {
-      expect(() => readEnergyColumn([], from)).toThrow(/Write key:NAME or number:N/);
+      expect(() => readEnergyColumn([], from)).toThrow(/Write key:NAME, number:N or/);
     }
   });
 

@@ -125,7 +125,8 @@ export class EnergyScan {
    */
   add(frame: { number: number; file: string; line: number }, comment: string, fields?: SdfFields): void {
     const row = this.#rows.length;
-    this.#rows.push({ frame: frame.number, file: frame.file, line: frame.line });
+    const { number, file, line } = frame;
+    this.#rows.push({ frame: number, file, line, ...(fields ? { textLine: line } : {}) });
     // Most large files write the energy alone: the way through all words is long, and always ends the same.
     const bare = this.#from === null && !fields ? bareDecimal(comment) : null;
     if (bare) {

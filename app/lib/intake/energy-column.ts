@@ -50,8 +50,8 @@ export function parseFrom(from: EnergyFrom): Rule {
   throw new DomainError(
     "invalid",
     "This is no number of the file",
-    `“${from.slice(0, 80)}” does not say which number is the energy. Write key:NAME or number:N.`,
-    { faults: [{ field: "energyFrom", message: "Write key:NAME or number:N." }] },
+    `“${from.slice(0, 80)}” does not say which number is the energy. Write key:NAME, number:N or, for an SDF, field:NAME.`,
+    { faults: [{ field: "energyFrom", message: "Write key:NAME, number:N or field:NAME." }] },
   );
 }
 
@@ -68,6 +68,13 @@ export interface EnergyRow {
   readonly frame: number;
   readonly file: string;
   readonly line: number;
+  /** The line of its numbers, where that is not the one behind `line`: of an SDF record the counts line stands for all. */
+  readonly textLine?: number;
+}
+
+/** The words of a comment line, or the data fields of a record: where a rule finds its number. */
+export function placeWords(from: EnergyFrom): "comment lines" | "data fields" {
+  return from.startsWith("field:") ? "data fields" : "comment lines";
 }
 
 /** Energies of frames by one rule, in their own unit as written. */
@@ -158,12 +165,15 @@ export function readEnergyColumn(
 /** The error for a rule that fits no frame (422 in the API). */
 export function absentEnergy(from: EnergyFrom): DomainError {
   const rule = parseFrom(from);
-  const what = rule.kind === "number" ? `number ${rule.position} of the comment line` : `“${rule.name}”`;
+  const what =
+    rule.kind === "number"
+      ? `number ${rule.position} of the comment line`
+      : `${rule.kind === "field" ? "the data field " : ""}“${rule.name}”`;
   const message = `No frame has ${what} as a number.`;
   return new DomainError(
     "invalid",
     "The energy was not found",
-    `${message} Check energyFrom: keys are exact in case, and every number of the comment line counts from 1.`,
+    `${message} Check energyFrom: names of keys and data fields are exact in case, and every number of the comment line counts from 1.`,
     { faults: [{ field: "energyFrom", message }] },
   );
 }

@@ -22,11 +22,14 @@ export function energyFromQuestion(
   const shown = findings.candidates.slice(0, MAX_OPTIONS);
   if (shown.length === 0) return null;
   const count = shown.length === 1 ? "one number" : `${numberWord(findings.candidates.length)} numbers`;
+  const fields = shown.some(({ from }) => from.startsWith("field:"));
+  const comments = shown.some(({ from }) => !from.startsWith("field:"));
+  const where = fields ? (comments ? "data fields and comment lines" : "data fields") : "comment lines";
   return {
     id: "energy-from",
     code: "energy-from",
     text: "Which number is the energy?",
-    reason: `The comment lines carry ${count}. Here ${shown.length === 1 ? "it is" : "they are"} for the first frames.`,
+    reason: `The ${where} carry ${count}. Here ${shown.length === 1 ? "it is" : "they are"} for the first frames.`,
     options: shown.map((candidate) => fromOption(candidate, findings, elements)),
   };
 }

@@ -48,14 +48,20 @@ function missing(column: EnergyColumn, k: number): IntakeMessage {
   const row = column.rows[k]!;
   const text = column.problems.get(k);
   if (text !== undefined) return unreadableEnergy(row, text);
-  const { frame, file, line } = row;
-  return remark("E10", { file, frame, line: line + 1, message: "The frame has no energy.", hint: LATER });
+  const { frame, file, line, textLine } = row;
+  return remark("E10", {
+    file,
+    frame,
+    line: textLine ?? line + 1,
+    message: "The frame has no energy.",
+    hint: LATER,
+  });
 }
 
 /** An energy that is written and is no number that can be stored: never a part of it (row E10). */
-export function unreadableEnergy({ frame, file, line }: EnergyRow, text: string): IntakeMessage {
+export function unreadableEnergy({ frame, file, line, textLine }: EnergyRow, text: string): IntakeMessage {
   const found = quoteFound(text);
-  const place = { file, frame, line: line + 1, found };
+  const place = { file, frame, line: textLine ?? line + 1, found };
   const { fault } = readNumber(text);
   if (fault === "not-finite" && /\d/.test(text)) {
     const message = "The energy is a number out of range.";
@@ -167,13 +173,13 @@ function wide(
     return [remark("E12", { file: column.rows[there[0]!]!.file, message, hint })];
   }
   return off.map((k) => {
-    const { frame, file, line } = column.rows[k]!;
+    const { frame, file, line, textLine } = column.rows[k]!;
     const away = kcalWords(Math.abs(column.values[k]! - median) * kcalPer(unit));
     const message = `The energy lies ${away} from the middle of the others.`;
     return remark("E12", {
       file,
       frame,
-      line: line + 1,
+      line: textLine ?? line + 1,
       message,
       hint: "Did the calculation fail? Hold the frame if so.",
     });
