@@ -3,6 +3,7 @@ import { BlockHead } from "~/components/ui/finding";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
+import { setLaidOver } from "~/hooks/use-laid-over";
 import type { NearnessAnswer } from "~/hooks/whole-ensemble-protocol";
 import type { NearPair } from "~/lib/align/nearness";
 import { formatEnergy, formatRmsd, plural, withUnit } from "~/lib/format";
@@ -104,14 +105,17 @@ function PairRow({
       <Td>
         <TextButton
           className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
-          onClick={() => show(frames)}
+          onClick={() => {
+            setLaidOver(frames);
+            show(frames);
+          }}
         >
           {children}
         </TextButton>
       </Td>
       <Td align="right">
         {exact ? "" : "to "}
-        {rmsd < 0.001 ? "below 0.001" : formatRmsd(rmsd)}
+        {formatRmsd(rmsd)}
       </Td>
       <Td align="right">{formatEnergy(energy)}</Td>
     </Tr>
@@ -162,7 +166,11 @@ export function NearestToSelected() {
                   <Td>
                     <TextButton
                       className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
-                      onClick={() => show([reference.frame, row.frame])}
+                      onClick={() => {
+                        const frames = [reference.frame, row.frame];
+                        setLaidOver(frames);
+                        show(frames);
+                      }}
                     >
                       {row.name}
                       <span className="sr-only"> laid over {reference.name}</span>

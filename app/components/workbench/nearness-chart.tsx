@@ -1,6 +1,6 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, Plot, usePlot } from "~/components/charts/plot";
-import { formatCount, formatRmsd, plural, withUnit } from "~/lib/format";
+import { fixed, formatCount, formatRmsd, plural, withUnit } from "~/lib/format";
 import type { NearnessBin, NearnessHistogram } from "~/lib/workbench/nearness";
 
 /** The highest bar, of exact copies mostly, may dwarf the rest: it is cut where it is so many times the next. */
@@ -23,10 +23,10 @@ export function NearnessChart({
   const end = bins.at(-1)?.to ?? 1;
   const gap =
     farthestMerged !== null && nearestApart !== null && nearestApart > farthestMerged
-      ? `Nothing lies between ${formatRmsd(farthestMerged)} and ${withUnit(formatRmsd(nearestApart), "Å")}.`
+      ? `Nothing lies between ${fixed(farthestMerged, 3)} and ${withUnit(fixed(nearestApart, 3), "Å")}.`
       : "There is no gap between what was merged and what was kept apart.";
   const words = (bin: NearnessBin) =>
-    `${formatRmsd(bin.from)} to ${withUnit(formatRmsd(bin.to), "Å")}: ${plural(bin.merged, "repeat")}, ${plural(bin.apart, "conformer")} kept apart`;
+    `${fixed(bin.from, 3)} to ${withUnit(fixed(bin.to, 3), "Å")}: ${plural(bin.merged, "repeat")}, ${plural(bin.apart, "conformer")} kept apart`;
   const filled = bins.filter((bin) => bin.merged + bin.apart > 0);
   return (
     <ChartFrame

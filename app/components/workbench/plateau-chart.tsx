@@ -1,7 +1,7 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, Plot, usePlot } from "~/components/charts/plot";
 import { Skeleton } from "~/components/ui/skeleton";
-import { formatCount, formatEnergy, formatRmsd, plural, withUnit } from "~/lib/format";
+import { fixed, formatCount, formatEnergy, formatRmsd, plural, trimmed, withUnit } from "~/lib/format";
 import type { ToleranceCounts } from "~/lib/sift/count-against-tolerance";
 import {
   type CountedTolerance,
@@ -9,6 +9,7 @@ import {
   type Plateau,
   plateauAround,
 } from "~/lib/workbench/plateau";
+import { roundTicks } from "~/lib/workbench/ticks";
 
 /** Counts higher than so many times the one at hand would flatten what lies around it: they run out of the picture. */
 const HEADROOM = 4;
@@ -39,11 +40,11 @@ export function PlateauChart({
   const widest = Math.max(1, (here?.tolerance ?? 0) * 1.1, ...counts.rmsdTolerances);
   const most = Math.max(...points.map(({ count }) => count), ...counts.counts.flat());
   const reference = here?.count ?? points[Math.floor(points.length / 2)]?.count ?? most;
-  const top = Math.max(4, Math.min(1.08 * most, HEADROOM * Math.max(1, reference)));
+  const top = Math.max(4, Math.min(1.15 * most, HEADROOM * Math.max(1, reference)));
   const names = counts.energyFactors.map((factor) =>
     energyTolerance === null
       ? "distinct conformers"
-      : `at ${withUnit(formatEnergy(factor * energyTolerance), "kcal/mol")}`,
+      : `at ${withUnit(fine(factor * energyTolerance), "kcal/mol")}`,
   );
   return (
     <div className={stale ? "opacity-50 transition-opacity" : "transition-opacity"} aria-busy={stale}>
@@ -66,7 +67,13 @@ export function PlateauChart({
           label={`Distinct conformers against the RMSD tolerance${here ? `: ${formatCount(here.count)} at ${withUnit(formatRmsd(here.tolerance), "Å")}` : ""}`}
           height={260}
           axisWidth={most >= 1000 ? 44 : 36}
-          x={{ title: "RMSD tolerance, Å", low: -0.02 * widest, high: widest }}
+          x={{
+            title: "RMSD tolerance, Å",
+            low: -0.02 * widest,
+            // Room at the right for the ends of the lines.
+            high: counts.energyFactors.length > 1 ? 1.26 * widest : widest,
+            ticks: roundTicks(0, widest, 5),
+          }}
           y={{ title: "distinct conformers", low: 0, high: top }}
           points={points
             .filter(({ count }) => count <= top)
@@ -93,6 +100,10 @@ export function PlateauChart({
     </div>
   );
 }
+
+/** Half of 0.15 is 0.075. */
+const fine = (energyKcal: number) =>
+  energyKcal * 100 === Math.round(energyKcal * 100) ? formatEnergy(energyKcal) : fixed(energyKcal, 3);
 
 /** Holds the place of the chart while the frames are fetched or counted. */
 export function PlateauPlace({ children }: { children: React.ReactNode }) {
@@ -193,16 +204,22 @@ function Lines({
       ) : null}
       {energyTolerance !== null && lines.length > 1 ? (
         <EndLabels
+          widest={widest}
           ends={lines.map(({ factor, line }) => ({
             chosen: factor === 1,
-            text: `${formatEnergy(factor * energyTolerance)}: ${formatCount(line.at(-1)?.count)}`,
+            text: `${fine(factor * energyTolerance)}: ${formatCount(line.at(-1)?.count)}`,
             y: y(line.at(-1)?.count ?? 0),
           }))}
         />
       ) : null}
       {plateau ? (
-        <ChartText x={plot.x(plateau.from) + 6} y={plot.bottom - 18} halo>
-          {`plateau, ${formatRmsd(plateau.from)} to ${withUnit(formatRmsd(plateau.to), "Å")}`}
+        <ChartText
+          x={plot.x(plateau.to) + (plateau.to > 0.6 * widest ? -6 : 6)}
+          y={plot.bottom - (plateau.to > 0.6 * widest ? 20 : 8)}
+          end={plateau.to > 0.6 * widest}
+          halo
+        >
+          {`plateau, ${trimmed(plateau.from, 3)} to ${withUnit(trimmed(plateau.to, 3), "Å")}`}
         </ChartText>
       ) : null}
       {here ? (
@@ -230,7 +247,13 @@ function Lines({
 }
 
 /** "0.30 kcal/mol: 19" at the right end of each line, moved apart where they would lie on one another. */
-function EndLabels({ ends }: { ends: { chosen: boolean; text: string; y: number }[] }) {
+function EndLabels({
+  ends,
+  widest,
+}: {
+  ends: { chosen: boolean; text: string; y: number }[];
+  widest: number;
+}) {
   const plot = usePlot();
   if (!plot) return null;
   const sorted = [...ends].sort((a, b) => a.y - b.y);
@@ -240,7 +263,13 @@ function EndLabels({ ends }: { ends: { chosen: boolean; text: string; y: number 
       {sorted.map((end) => {
         last = Math.max(end.y - 6, last + 14);
         return (
-          <ChartText key={end.text} x={plot.right - 4} y={last} end tone={end.chosen ? "ink" : "plain"} halo>
+          <ChartText
+            key={end.text}
+            x={plot.x(widest) + 6}
+            y={last + 10}
+            tone={end.chosen ? "ink" : "plain"}
+            halo
+          >
             {end.text}
           </ChartText>
         );

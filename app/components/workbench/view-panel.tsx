@@ -7,6 +7,7 @@ import { Viewer, type ViewerProps } from "~/components/viewer/viewer";
 import { failureWords } from "~/hooks/failure-words";
 import { useCoordinates } from "~/hooks/use-coordinates";
 import { useHovered } from "~/hooks/use-hovered";
+import { useLaidOver } from "~/hooks/use-laid-over";
 import { useSettled } from "~/hooks/use-settled";
 import { perceiveBonds } from "~/lib/chem/bonds";
 import { formatCount, plural } from "~/lib/format";
@@ -39,9 +40,12 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
       : state.align.length <= NAMED_ATOMS
         ? `aligned on ${measureLabel(ensemble.elements, state.align).replaceAll("\u2013", ", ")}`
         : `aligned on ${formatCount(state.align.length)} atoms`;
+  const asked = useLaidOver();
+  const pair =
+    asked !== null && asked.length === selected.length && asked.every((frame, k) => frame === selected[k]);
   const plan = useMemo(
-    () => viewPlan({ rows: shownRows, roles, held, selected, mode: state.mode, alignedOn }),
-    [shownRows, roles, held, selected, state.mode, alignedOn],
+    () => viewPlan({ rows: shownRows, roles, held, selected, mode: state.mode, alignedOn, pair }),
+    [shownRows, roles, held, selected, state.mode, alignedOn, pair],
   );
   const positions = useMemo(
     () => new Map([...coordinates.positions, ...own.positions]),

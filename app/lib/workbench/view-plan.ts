@@ -40,6 +40,8 @@ export function viewPlan(options: {
   selected: readonly number[];
   mode: ViewMode;
   alignedOn: string;
+  /** The two selected were asked for as a pair: they are shown alone, one laid over the other. */
+  pair?: boolean;
 }): ViewPlan {
   const { rows, roles, held, selected, mode } = options;
   const byFrame = new Map(rows.map((row) => [row.frame, row]));
@@ -54,7 +56,7 @@ export function viewPlan(options: {
   const name = (frame: number) => frameName(frame, roles, held);
   const stranger = selected.some((frame) => !byFrame.has(frame));
 
-  if (stranger || rows.length === 0) {
+  if (stranger || rows.length === 0 || (options.pair && mode === "overlay")) {
     const frames = selected.slice(0, mode === "one" ? 1 : MAX_COLOURED);
     return {
       frames: frames.map((frame, k) => shown(frame, k > 0 && roles.has(frame))),
