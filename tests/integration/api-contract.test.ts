@@ -56,6 +56,7 @@ const CALLS: ApiCall[] = [
   { method: "GET", path: "/sifts/:id", empty: 200, verb: "read" },
   { method: "DELETE", path: "/sifts/:id", empty: 202, verb: "compute" },
   { method: "GET", path: "/sifts/:id/populations", empty: 200, verb: "read" },
+  { method: "GET", path: "/sifts/:id/averages.csv", empty: 200, verb: "read" },
   { method: "GET", path: "/sifts/:id/export.xyz", empty: 200, verb: "read" },
   { method: "GET", path: "/sifts/:id/export.csv", empty: 200, verb: "read" },
   { method: "GET", path: "/sifts/:id/export.json", empty: 200, verb: "read" },

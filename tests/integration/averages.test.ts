@@ -1,0 +1,243 @@
+import { readFileSync } from "node:fs";
+import { eq } from "drizzle-orm";
+import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { db, inTransaction } from "~/db/client.server";
+import { columns } from "~/db/schema.server";
+import type { EnsembleAnswer } from "~/lib/api/schemas";
+import { angle, distance, torsion } from "~/lib/measure/geometry";
+import type { SiftView } from "~/lib/views";
+import type { Actor } from "~/services/auth/access.server";
+import { addObservable, observableRequestSchema } from "~/services/averages/observe.server";
+import { recomputeObservables } from "~/services/averages/recompute-observables.server";
+import { setRule } from "~/services/averages/set-rule.server";
+import { lockEnsemble, storeColumn } from "~/services/columns/store-column.server";
+import { fixtures, readReference } from "../factories/reference";
+import { makeLab, reference, sifted, takenIn, withJobs } from "../factories/upload";
+import { call } from "../setup/app";
+
+// Averages through the API and the services of the page, on a real ensemble with independently computed means.
+
+const NAME = "ac-ala-nhme";
+let jobs: { stop(): Promise<void> };
+let lab: Awaited<ReturnType<typeof makeLab>>;
+let ensemble: EnsembleAnswer;
+let sift: SiftView;
+let analyst: Actor;
+const set = readReference(`ensembles/${NAME}.xyz`, `ensembles/${NAME}`);
+const frames = set.frames.block;
+
+beforeAll(async () => {
+  jobs = await withJobs();
+  lab = await makeLab();
+  analyst = { kind: "user", userId: lab.analyst.id, sessionId: "a".repeat(16) };
+  ensemble = await takenIn(
+    lab.token,
+    [{ name: `${NAME}.xyz`, content: reference(`ensembles/${NAME}.xyz`) }],
+    {
+      level: "MMFF94",
+      energyUnit: "kcal/mol",
+    },
+  );
+  sift = await sifted(lab.token, ensemble.id, {
+    level: "MMFF94",
+    energyTolerance: 0.06,
+    rmsdTolerance: 0.2,
+    atoms: "heavy",
+    mirror: "keep",
+  });
+}, 120_000);
+
+afterAll(() => jobs.stop());
+
+async function store(
+  name: string,
+  unit: string | null,
+  values: readonly (number | null)[],
+  more: { rule?: "linear" | "r-6" | "circular"; quantity?: string; atom?: number } = {},
+) {
+  const at = { teamId: lab.team.id, ensembleId: ensemble.id, userId: lab.analyst.id };
+  return inTransaction(async (tx) => {
+    await lockEnsemble(tx, at);
+    return storeColumn(tx, at, {
+      name,
+      kind: "property",
+      unit,
+      origin: "table:test.csv",
+      data: {
+        values: Float64Array.from(values, (value) => value ?? 0),
+        present: Uint8Array.from(values, (value) => (value === null ? 0 : 1)),
+      },
+      ...more,
+    });
+  });
+}
+
+async function csv(query = ""): Promise<Map<string, Record<string, string>>> {
+  const answer = await call(`/api/v1/sifts/${sift.id}/averages.csv${query}`, { token: lab.token });
+  expect(answer.status).toBe(200);
+  expect(answer.headers.get("content-type")).toBe("text/csv; charset=utf-8");
+  const [head, ...lines] = (await answer.text()).trimEnd().split("\r\n");
+  expect(head).toBe("property,unit,rule,average,spread,uncertainty,covered");
+  return new Map(
+    lines.map((line) => {
+      const cells = line.split(",");
+      return [cells[0] ?? "", Object.fromEntries(head!.split(",").map((name, k) => [name, cells[k] ?? ""]))];
+    }),
+  );
+}
+
+describe("averages.csv", () => {
+  it("of an ensemble without properties is its header", async () => {
+    expect((await csv()).size).toBe(0);
+  });
+
+  it("gives means and spreads of the reference program, for both weightings and temperatures", async () => {
+    const [head, ...lines] = readFileSync(`${fixtures}ensembles/${NAME}.properties.csv`, "utf8")
+      .trim()
+      .split("\n");
+    for (const [k, name] of head!.split(",").entries()) {
+      if (k > 0)
+        await store(
+          name,
+          "Å",
+          lines.map((line) => Number(line.split(",")[k])),
+        );
+    }
+    const expected: {
+      property: string;
+      weights: string;
+      T_K: number;
+      mean: number;
+      population_sd: number;
+    }[] = JSON.parse(readFileSync(`${fixtures}ensembles/${NAME}.expected.json`, "utf8")).weighted_properties;
+    for (const one of expected) {
+      const rows = await csv(`?temperature=${one.T_K}&weights=${one.weights}`);
+      const row = rows.get(one.property)!;
+      expect(row).toMatchObject({ unit: "Å", rule: "linear", uncertainty: "", covered: "1" });
+      expect(Math.abs(Number(row.average) - one.mean)).toBeLessThan(1e-8);
+      expect(Math.abs(Number(row.spread) - one.population_sd)).toBeLessThan(1e-8);
+    }
+  });
+
+  it("adds the uncertainty that the level's error makes, the same digits each time", async () => {
+    const first = await csv("?sigma=0.5");
+    const again = await csv("?sigma=0.5");
+    expect(Number(first.get("radius_of_gyration_A")!.uncertainty)).toBeGreaterThan(0.001);
+    expect([...again]).toEqual([...first]);
+    expect(Number((await csv("?sigma=0")).get("radius_of_gyration_A")!.uncertainty)).toBeLessThan(1e-12);
+  });
+
+  it("leaves out missing values, and refuses below 90 % covered", async () => {
+    const kept = sift.result!.kept.map(({ frame }) => frame);
+    const some = (without: number[]) =>
+      Array.from({ length: frames.count }, (_, k) => (without.includes(k + 1) ? null : 2));
+    await store("nearly all", null, some([kept.at(-1)!]));
+    await store("too few", null, some([kept[0]!]));
+    const rows = await csv();
+    expect(rows.get("nearly all")!.average).toBe("2");
+    expect(Number(rows.get("nearly all")!.covered)).toBeLessThan(1);
+    expect(rows.get("too few")).toMatchObject({ average: "", spread: "" });
+    expect(Number(rows.get("too few")!.covered)).toBeLessThan(0.9);
+  });
+
+  it("merges per-atom columns over equivalent atoms, one row a column", async () => {
+    const methyl = [...set.graph.elements.keys()].find((atom) => {
+      const at = set.graph.neighbours.subarray(set.graph.offsets[atom]!, set.graph.offsets[atom + 1]!);
+      return (
+        set.graph.elements[atom] === 6 && [...at].filter((b) => set.graph.elements[b] === 1).length === 3
+      );
+    })!;
+    const hydrogens = [
+      ...set.graph.neighbours.subarray(set.graph.offsets[methyl]!, set.graph.offsets[methyl + 1]!),
+    ].filter((b) => set.graph.elements[b] === 1);
+    for (const [k, atom] of hydrogens.entries()) {
+      await store(`shift H${atom + 1}`, "ppm", new Array(frames.count).fill(k + 1), {
+        quantity: "shift",
+        atom: atom + 1,
+      });
+    }
+    const rows = await csv();
+    for (const atom of hydrogens) expect(rows.get(`shift H${atom + 1}`)!.average).toBe("2");
+  });
+
+  it("says what is not right, and what is not there", async () => {
+    for (const query of ["?sigma=-1", "?sigma=x", "?temperature=0", "?weights=best", "?level=none"]) {
+      const answer = await call(`/api/v1/sifts/${sift.id}/averages.csv${query}`, { token: lab.token });
+      expect(answer.status, query).toBe(422);
+      expect((await answer.json()).errors[0].field).toBe(query.slice(1).split("=")[0]);
+    }
+    const unweighed = await sifted(lab.token, ensemble.id, { level: null });
+    const answer = await call(`/api/v1/sifts/${unweighed.id}/averages.csv`, { token: lab.token });
+    expect(answer.status).toBe(422);
+  });
+});
+
+describe("observables picked on the structure", () => {
+  const ask = (request: object) =>
+    addObservable({
+      actor: analyst,
+      ensembleId: ensemble.id,
+      request: observableRequestSchema.parse(request),
+    });
+  const stored = async (id: string) => {
+    const rows = await db.select().from(columns).where(eq(columns.id, id));
+    return rows[0]!;
+  };
+  const structure = (k: number) => frames.positions.subarray(66 * k, 66 * (k + 1));
+  const value = (data: Buffer, k: number) => data.readDoubleLE(8 * k);
+
+  it("become columns with their value in every frame", async () => {
+    const torsionColumn = await stored((await ask({ observable: "torsion", atoms: [1, 2, 4, 5] })).id);
+    const distanceColumn = await stored(
+      (await ask({ observable: "distance", atoms: [1, 5], merge: false, rule: "linear" })).id,
+    );
+    const angleColumn = await stored((await ask({ observable: "angle", atoms: [1, 2, 4] })).id);
+    expect(torsionColumn).toMatchObject({ rule: "circular", unit: "°", count: 300, origin: "observable" });
+    expect(angleColumn).toMatchObject({ rule: "linear", unit: "°" });
+    for (const k of [0, 150, 299]) {
+      expect(value(torsionColumn.data, k)).toBeCloseTo(torsion(structure(k), 0, 1, 3, 4)!, 9);
+      expect(value(distanceColumn.data, k)).toBeCloseTo(distance(structure(k), 0, 4), 9);
+      expect(value(angleColumn.data, k)).toBeCloseTo(angle(structure(k), 0, 1, 3)!, 9);
+    }
+    expect((await csv()).get(torsionColumn.name)!.rule).toBe("circular");
+  });
+
+  it("are merged over a methyl group, and computed again when the rule changes", async () => {
+    const hydrogen = [...set.graph.elements.keys()].filter((atom) => set.graph.elements[atom] === 1);
+    const made = await ask({ observable: "distance", atoms: [hydrogen[0]! + 1, 6], rule: "r-6" });
+    const before = await stored(made.id);
+    expect(before.definition).toMatchObject({ type: "observable", observable: "distance" });
+    if (before.definition?.type !== "observable") throw new Error("no observable");
+    const pairs = before.definition.atoms;
+    expect(pairs).toHaveLength(3);
+    const mean = pairs.reduce((sum, [i, j]) => sum + distance(structure(7), i! - 1, j! - 1) ** -6, 0) / 3;
+    expect(value(before.data, 7)).toBeCloseTo(mean ** (-1 / 6), 9);
+    await setRule({ actor: analyst, ensembleId: ensemble.id, columnId: made.id, rule: "linear" });
+    const after = await stored(made.id);
+    expect(after.rule).toBe("linear");
+    const plain = pairs.reduce((sum, [i, j]) => sum + distance(structure(7), i! - 1, j! - 1), 0) / 3;
+    expect(value(after.data, 7)).toBeCloseTo(plain, 9);
+    await inTransaction((tx) => recomputeObservables(tx, ensemble.id));
+    expect((await stored(made.id)).dataSha!.equals(after.dataSha!)).toBe(true);
+  });
+
+  it("are refused in words where they do not fit", async () => {
+    await expect(ask({ observable: "distance", atoms: [1, 99] })).rejects.toThrow("22 atoms");
+    await expect(ask({ observable: "torsion", atoms: [1, 2, 3] })).rejects.toThrow("takes 4");
+    await expect(ask({ observable: "coupling", atoms: [1, 2, 4, 5], set: "h-c-c-h" })).rejects.toThrow(
+      "does not fit",
+    );
+    await expect(ask({ observable: "coupling", atoms: [1, 2, 4, 5] })).rejects.toThrow("parameter set");
+    await expect(ask({ observable: "torsion", atoms: [1, 2, 4, 5] })).rejects.toThrow("already");
+  });
+
+  it("are not for readers", async () => {
+    await expect(
+      addObservable({
+        actor: { kind: "anonymous" },
+        ensembleId: ensemble.id,
+        request: observableRequestSchema.parse({ observable: "distance", atoms: [1, 2] }),
+      }),
+    ).rejects.toMatchObject({ code: "not-found" });
+  });
+});
