@@ -214,6 +214,7 @@ export const ensembleSchema = z
       z.object({ name: z.string(), sha256: z.string(), bytes: z.number().int(), frames: z.number().int() }),
     ),
     createdAt: z.string(),
+    warnings: warningsSchema.optional(),
   })
   .meta({ id: "Ensemble" });
 export type EnsembleAnswer = z.infer<typeof ensembleSchema>;
@@ -221,11 +222,13 @@ export type EnsembleAnswer = z.infer<typeof ensembleSchema>;
 export const ensembleListSchema = z
   .object({
     ensembles: z.array(
-      ensembleSchema.omit({ columns: true, files: true, intake: true, chirality: true }).extend({
-        intake: intakeSchema.omit({ messages: true, questions: true }).extend({
-          openQuestions: z.number().int(),
+      ensembleSchema
+        .omit({ columns: true, files: true, intake: true, chirality: true, warnings: true })
+        .extend({
+          intake: intakeSchema.omit({ messages: true, questions: true }).extend({
+            openQuestions: z.number().int(),
+          }),
         }),
-      }),
     ),
     page: z.number().int().positive(),
     pages: z.number().int(),

@@ -1,4 +1,4 @@
-import { ensembleListQuerySchema } from "~/lib/api/schemas";
+import { type EnsembleAnswer, ensembleListQuerySchema, type Warnings } from "~/lib/api/schemas";
 import type { Actor } from "~/services/auth/access.server";
 import { accessTeam } from "~/services/auth/access.server";
 import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
@@ -14,6 +14,11 @@ function teamOf(actor: Actor): string {
   return actor.teamId;
 }
 
+/** The ensemble as every call gives it, and what of this request was not taken up. */
+function withWarnings(ensemble: EnsembleAnswer, warnings: Warnings): EnsembleAnswer {
+  return warnings.length === 0 ? ensemble : { ...ensemble, warnings };
+}
+
 const answer = answerCall({
   async GET({ actor, url }) {
     const { teamId } = await accessTeam(actor, "read", teamOf(actor));
@@ -22,8 +27,8 @@ const answer = answerCall({
   async POST({ actor, request }) {
     const { teamId } = await accessTeam(actor, "take-in", teamOf(actor));
     const form = openForm({ body: request.body, contentType: request.headers.get("content-type") });
-    const { ensembleId, created } = await takeIn({ actor, form });
-    return json(await describeEnsemble(teamId, ensembleId), {
+    const { ensembleId, created, warnings = [] } = await takeIn({ actor, form });
+    return json(withWarnings(await describeEnsemble(teamId, ensembleId), warnings), {
       status: created ? 201 : 200,
       location: `/api/v1/ensembles/${ensembleId}`,
     });

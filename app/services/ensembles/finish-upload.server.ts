@@ -2,7 +2,7 @@ import { eq } from "drizzle-orm";
 import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { isDuplicate } from "../../db/driver-errors.server.ts";
 import { ensembles } from "../../db/schema.server.ts";
-import type { UploadFields } from "../../lib/api/schemas.ts";
+import type { UploadFields, Warnings } from "../../lib/api/schemas.ts";
 import type { Grant } from "../auth/access.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { type CompletedReading, completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
@@ -38,6 +38,8 @@ export interface TakenIn {
   teamId: string;
   /** False where the same files with the same answers were here before. */
   created: boolean;
+  /** What of the request was not taken up, where files were here before. */
+  warnings?: Warnings;
 }
 
 interface Finish {
@@ -104,7 +106,7 @@ export async function finishUpload(all: Finish): Promise<TakenIn> {
   const sha = filesSha(upload.store.written.map((file) => file.sha256));
   const known = await findSameFiles(grant.teamId, sha);
   if (known) {
-    return { ensembleId: answerSameFiles(known, written, all), teamId: grant.teamId, created: false };
+    return { ...(await answerSameFiles(known, written, all)), teamId: grant.teamId, created: false };
   }
   const kept = upload.reading.files.map(({ name }, at) => ({ name, sourceId: upload.sourceOf(at) }));
   const { reading, result } = await endReading(upload.reading, grant, kept);
@@ -129,7 +131,7 @@ export async function finishUpload(all: Finish): Promise<TakenIn> {
       // Somebody was faster by a moment: with the same ensemble, or only with one of its files or its series.
       const winner = await findSameFiles(grant.teamId, sha);
       if (winner) {
-        return { ensembleId: answerSameFiles(winner, written, all), teamId: grant.teamId, created: false };
+        return { ...(await answerSameFiles(winner, written, all)), teamId: grant.teamId, created: false };
       }
       if (attempt >= PUBLISH_TRIES) throw error;
     }

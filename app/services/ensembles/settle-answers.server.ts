@@ -33,10 +33,12 @@ import { type ScannedFile, scanComments } from "./scan-comments.server.ts";
 export type EnsembleRow = typeof ensembles.$inferSelect;
 
 /** What is known so far: the request's own answers, and what was asked and answered since. */
-function answersSoFar(ensemble: EnsembleRow, asked: readonly IntakeQuestion[]): EnergyAnswers {
+export function answersSoFar(
+  { answers }: Pick<EnsembleRow, "answers">,
+  asked: readonly IntakeQuestion[],
+): EnergyAnswers {
   const answered = (id: string) => asked.find((question) => question.id === id)?.answered ?? null;
   const unit = answered("energy-unit");
-  const { answers } = ensemble;
   return {
     energyFrom: unit === NO_ENERGY ? NO_ENERGY : (answered("energy-from") ?? answers.energyFrom),
     energyUnit: unit ?? answers.energyUnit,
