@@ -1,4 +1,5 @@
 import type { MessagePort } from "node:worker_threads";
+import type { FrameMatches } from "../lib/levels/match-frames.ts";
 import type { SiftRecipe } from "../lib/recipe/recipe.ts";
 import type { SiftResult } from "../lib/recipe/result.ts";
 
@@ -23,7 +24,23 @@ export interface SiftTask {
   port: MessagePort;
 }
 
-export type ComputeTask = SiftTask;
+/** The frames of two files of one molecule, to be matched one to one. */
+export interface MatchTask {
+  kind: "match";
+  elements: Uint8Array;
+  isotopes: Uint16Array;
+  bonds: Int32Array;
+  own: { positions: Float64Array; numbers: Int32Array };
+  other: { positions: Float64Array; numbers: Int32Array };
+  atoms: SiftRecipe["atoms"];
+  symmetry: boolean;
+  tolerance: number;
+  mirror: boolean;
+}
+
+export type MatchAnswer = { kind: "matched"; matches: FrameMatches };
+
+export type ComputeTask = SiftTask | MatchTask;
 
 /** Sent through the task's port, at most ten times a second. */
 export interface ProgressMessage {
@@ -33,11 +50,19 @@ export interface ProgressMessage {
 export type SiftAnswer = { kind: "done"; result: Omit<SiftResult, "held"> } | { kind: "cancelled" };
 
 /** Buffers and ports of a task that change their owner. */
-export function transferList(task: ComputeTask): (ArrayBuffer | MessagePort)[] {
+export function transferList(task: SiftTask): (ArrayBuffer | MessagePort)[] {
   const arrays = [task.positions, task.numbers];
   const buffers = arrays.map((array) => array.buffer as ArrayBuffer);
   if (task.energies) {
     buffers.push(task.energies.values.buffer as ArrayBuffer, task.energies.present.buffer as ArrayBuffer);
   }
   return [...buffers, task.port];
+}
+
+/** Buffers of a matching that change their owner. */
+export function matchBuffers({ own, other }: MatchTask): ArrayBuffer[] {
+  return [own, other].flatMap(({ positions, numbers }) => [
+    positions.buffer as ArrayBuffer,
+    numbers.buffer as ArrayBuffer,
+  ]);
 }

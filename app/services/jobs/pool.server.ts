@@ -5,6 +5,9 @@ import { MessageChannel } from "node:worker_threads";
 import { Piscina } from "piscina";
 import { env } from "../../env.server.ts";
 import {
+  type MatchAnswer,
+  type MatchTask,
+  matchBuffers,
   type ProgressMessage,
   type SiftAnswer,
   type SiftTask,
@@ -86,6 +89,23 @@ export async function computeSift(
     throw error;
   } finally {
     port1.close();
+  }
+}
+
+/**
+ * Matches the frames of two files in a thread. The task's arrays are moved there and empty afterwards.
+ *
+ * @throws WorkerLost when the thread ended
+ */
+export async function computeMatch(task: Omit<MatchTask, "kind">): Promise<MatchAnswer["matches"]> {
+  const full: MatchTask = { ...task, kind: "match" };
+  try {
+    const answer: MatchAnswer = await pool().run(full, { transferList: matchBuffers(full) });
+    return answer.matches;
+  } catch (error) {
+    if (isCrash(error))
+      throw new WorkerLost("The computing thread ended before its answer.", { cause: error });
+    throw error;
   }
 }
 
