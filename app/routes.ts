@@ -5,6 +5,7 @@ export default [
   index("routes/home.tsx"),
   route("methods", "routes/methods.tsx"),
   route("formats", "routes/formats.tsx"),
+  route("api", "routes/api-reference.tsx"),
   route("theme", "routes/theme.ts"),
 
   route("login", "routes/auth/login.tsx"),

@@ -19,7 +19,7 @@ const sources = readdirSync(APP, { recursive: true, encoding: "utf8" })
 
 /** Static and dynamic imports and re-exports, comments left out. */
 const IMPORT =
-  /(?:^|\n|;)\s*(import|export)\s+(type\s)?([^;]*?from\s*)?["']([^"']+)["']|(?<!typeof )\bimport\(\s*["']([^"']+)["']\s*\)/g;
+  /(?:^|\n|;)\s*(import|export)\s+(type\s)?([^;]*?from\s*)?["']([^"'\n]+)["']|(?<!typeof )\bimport\(\s*["']([^"']+)["']\s*\)/g;
 
 function withoutComments(text: string): string {
   return text.replace(/\/\*[\s\S]*?\*\//g, "").replace(/(^|\s)\/\/[^\n]*/g, "$1");
@@ -33,6 +33,8 @@ function resolve(from: string, to: string): string {
       ? path.posix.join(path.posix.dirname(from), to)
       : null;
   if (raw === null) return to;
+  // A file taken in as text is no module; its own name counts.
+  if (raw.endsWith("?raw")) return `app/${raw.slice(0, -4)}`;
   const found = [raw, `${raw}.ts`, `${raw}.tsx`, `${raw}/index.ts`].find((name) => sources.includes(name));
   return `app/${found ?? raw}`;
 }
@@ -220,6 +222,7 @@ describe("the table of routes", () => {
     const OPEN = new Set([
       "routes/methods.tsx", // reference page, no data
       "routes/formats.tsx", // reference page, no data
+      "routes/api-reference.tsx", // reference page, no data
       "routes/theme.ts", // a cookie of the caller's own
       "routes/healthz.ts", // that the process lives
       "routes/not-found.tsx", // nothing

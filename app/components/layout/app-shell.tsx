@@ -116,9 +116,9 @@ function Foot({ recipe, results }: { recipe?: ReactNode; results: boolean }) {
           <Link className={linkClass} to={href("/formats")}>
             What the readers accept
           </Link>
-          <a className={linkClass} href={href("/api/v1/openapi.json")}>
-            API description
-          </a>
+          <Link className={linkClass} to={href("/api")}>
+            The API
+          </Link>
           <span>Constants: {CONSTANTS_YEAR}</span>
         </p>
       </div>

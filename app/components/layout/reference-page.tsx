@@ -4,7 +4,9 @@ import { pageClass } from "./app-shell";
 
 export interface ReferenceSection {
   id: string;
-  title: string;
+  title: ReactNode;
+  /** In the list at the left, where the title is more than words. */
+  name?: string;
   body: ReactNode;
 }
 
@@ -30,7 +32,7 @@ export function ReferencePage({
           className="mt-6 self-start lg:sticky lg:top-6 lg:col-start-1 lg:row-span-2 lg:row-start-1 lg:mt-0"
         >
           <ul className="flex flex-wrap gap-x-4 gap-y-1 lg:grid lg:gap-0">
-            {sections.map(({ id, title: name }) => (
+            {sections.map(({ id, title, name = title }) => (
               <li key={id} className="lg:border-b lg:border-rule">
                 <a
                   href={`#${id}`}

@@ -5,7 +5,7 @@ import { Dialog, DialogFoot } from "~/components/ui/dialog";
 import { TextButton } from "~/components/ui/text-link";
 import type { PeopleAnswer } from "~/routes/team/people";
 import type { MemberRow } from "~/services/people/list-people.server";
-import { useAnswerToast } from "./members-table";
+import { useAnswerToast } from "./use-answer-toast";
 
 /** The way out of a team: one's own, or an owner's for somebody else. Asks first. */
 export function LeaveOrRemove({

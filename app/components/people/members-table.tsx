@@ -1,25 +1,15 @@
-import { useEffect } from "react";
 import { href, useFetcher } from "react-router";
 import { Badge } from "~/components/ui/badge";
 import { BlockHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
-import { showToast } from "~/components/ui/toast";
 import { formatDateShort, formatMoment } from "~/lib/format";
 import type { PeopleAnswer } from "~/routes/team/people";
 import type { InvitationRow, MemberRow, PeopleView } from "~/services/people/list-people.server";
 import { LeaveOrRemove } from "./leave-or-remove";
 import { RoleSelect } from "./role-select";
-
-/** Says what became of an act in a row. */
-export function useAnswerToast(data: PeopleAnswer | undefined, idle: boolean): void {
-  useEffect(() => {
-    if (!idle || data === undefined) return;
-    if (data.ok && data.done) showToast({ tone: "done", badge: "done", text: data.done });
-    else if (data.message) showToast({ tone: "failed", text: data.message });
-  }, [data, idle]);
-}
+import { useAnswerToast } from "./use-answer-toast";
 
 /** Members with their roles; invitations that wait come last, dashed. */
 export function MembersTable({
@@ -111,7 +101,7 @@ function MemberLine({
       </Td>
       <Td tall className="max-sm:hidden">
         {member.seenAt === null ? (
-          <span className="text-ink-3">{member.sessions === null ? "not shown" : "not of late"}</span>
+          <span className="text-ink-3">{member.sessions === null ? "not shown" : "not signed in"}</span>
         ) : (
           formatMoment(member.seenAt, now)
         )}

@@ -2,7 +2,7 @@ import { href, useFetcher } from "react-router";
 import { FilterSelect } from "~/components/ui/select-field";
 import type { PeopleAnswer } from "~/routes/team/people";
 import type { MemberRow } from "~/services/people/list-people.server";
-import { useAnswerToast } from "./members-table";
+import { useAnswerToast } from "./use-answer-toast";
 
 const CHOICES = [
   { value: "owner", label: "Owner" },
