@@ -9,7 +9,7 @@ import { expect, expectAccessible, hydrated, signIn, test } from "./base";
 
 const run = promisify(execFile);
 const EXAMPLES = path.resolve("app/lib/api/examples");
-const ENSEMBLE = path.resolve("fixtures/reference/difluoroethane.xyz");
+const ENSEMBLE = path.resolve("fixtures/reference/ensembles/difluoroethane.xyz");
 
 let folder = "";
 test.beforeEach(() => {
