@@ -72,7 +72,7 @@ test("the batch job says what was refused and goes on", async ({ page, baseURL }
   const done = await push(baseURL ?? "", "Night run", ["bad.xyz", "good.xyz"]);
   expect(done.code).toBe(1);
   expect(done.rows.map(({ status }) => status)).toEqual([422, 201]);
-  expect(done.stderr).toContain("Line 1 should hold the atom count");
+  expect(done.stderr).toContain("line 1 should hold the atom count");
 });
 
 test("the Python program prints populations that the page shows", async ({ page, baseURL }) => {
