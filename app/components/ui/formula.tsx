@@ -1,3 +1,4 @@
+import { formulaRuns } from "~/lib/chem/formula-runs";
 import { formulaParts } from "~/lib/format";
 
 /** A molecular formula with its counts set low. */
@@ -14,5 +15,12 @@ export function Formula({ children }: { children: string }) {
         ),
       )}
     </span>
+  );
+}
+
+/** A sentence whose formulas have their counts set low. */
+export function WithFormulas({ children }: { children: string }) {
+  return formulaRuns(children).map((run, k) =>
+    run.formula ? <Formula key={k}>{run.text}</Formula> : <span key={k}>{run.text}</span>,
   );
 }

@@ -5,5 +5,11 @@ export interface ActAnswer {
   /** What to do differently, where it was refused. */
   message?: string;
   /** Done: what, for the toast. */
-  done?: { intent: string; frame?: number; reason?: string };
+  done?: {
+    intent: string;
+    frame?: number;
+    reason?: string;
+    /** The ensemble that came of it; `created` is false where it was here before. */
+    made?: { ensembleId: string; name: string; frames: number; created: boolean };
+  };
 }

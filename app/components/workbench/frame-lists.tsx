@@ -1,12 +1,15 @@
 import { type ReactNode, useState } from "react";
 import { Badge } from "~/components/ui/badge";
+import { WithFormulas } from "~/components/ui/formula";
 import { TextButton } from "~/components/ui/text-link";
 import { capital, formatCount, plural } from "~/lib/format";
 import { whyNotReleased } from "~/lib/intake/release";
 import type { IntakeMessage } from "~/lib/intake/report";
+import { canBeSplitOff } from "~/lib/intake/split-name";
 import type { FileView, FrameView } from "~/lib/views";
 import { type FrameGroup, framesWords, groupFrames, reasonWords } from "~/lib/workbench/intake-lists";
 import { HoldFrame, ReleaseFrame } from "./decide-frame";
+import { SplitOff } from "./split-off";
 import { useWorkbench } from "./workbench-context";
 
 const FIRST_GROUPS = 10;
@@ -60,7 +63,11 @@ export function RemarkedList({ frames }: { frames: readonly FrameView[] }) {
     >
       {(group) => (
         <Entry key={group.first.number} group={group}>
-          <p>{group.first.note}</p>
+          {group.first.note ? (
+            <p>
+              <WithFormulas>{group.first.note}</WithFormulas>
+            </p>
+          ) : null}
           <Acts group={group} />
         </Entry>
       )}
@@ -148,7 +155,11 @@ function HeldEntry({ group }: { group: FrameGroup }) {
   const single = frames.length === 1;
   return (
     <Entry group={group}>
-      {first.note ? <p>{first.note}</p> : null}
+      {first.note ? (
+        <p>
+          <WithFormulas>{first.note}</WithFormulas>
+        </p>
+      ) : null}
       {waits && ensemble.openQuestions > 0 ? (
         <p className="text-ink-2">
           Released by the answer to the {ensemble.openQuestions === 1 ? "question" : "questions"} above.
@@ -165,6 +176,9 @@ function HeldEntry({ group }: { group: FrameGroup }) {
           <ReleaseFrame ensembleId={ensemble.id} frame={first.number} note={first.note} />
         ) : null}
       </Acts>
+      {ensemble.mayCompute && canBeSplitOff(first.holdReason) ? (
+        <SplitOff ensembleId={ensemble.id} frame={first.number} count={frames.length} />
+      ) : null}
     </Entry>
   );
 }
@@ -206,7 +220,7 @@ export function FileMessages({
           <li key={k} className="border-b border-rule py-3">
             <p>
               {files.length > 1 ? `${message.file}: ` : ""}
-              {message.message}
+              <WithFormulas>{message.message}</WithFormulas>
               {message.found ? <span className="text-ink-3"> Found: “{message.found}”.</span> : null}
             </p>
             {message.hint || message.line ? (

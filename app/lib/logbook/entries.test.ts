@@ -61,6 +61,16 @@ const WRITTEN: [LogbookEntry, string, string | null][] = [
     "it is another molecule.",
   ],
   [
+    { type: "split-off", data: { ensembleId: "a", name: "Acid, other tautomer", frames: [7, 8], count: 2 } },
+    "Made an ensemble of 2 held frames: Acid, other tautomer",
+    "Frames 7, 8",
+  ],
+  [
+    { type: "split-from", data: { ensembleId: "a", name: "Acid", frames: [7], count: 1 } },
+    "Made of 1 held frame of Acid",
+    "there frame 7",
+  ],
+  [
     { type: "sift", data: { siftId: "a", automatic: true, recipe } },
     "Sift begun after intake",
     "level MMFF94, RMSD 0.200\u00a0Å, no energy tolerance, window 3.00\u00a0kcal/mol, heavy atoms and polar hydrogens, mirror images merged",

@@ -1,10 +1,19 @@
 import { z } from "zod";
 import { fixed, formatChecksum, formatCount, formatDate, formatEnergy, plural, withUnit } from "../format.ts";
+import { framesWords } from "../workbench/intake-lists.ts";
 
 /**
  * What the logbook can hold: a closed union, so that every old row still parses and has a sentence.
  * Add kinds and optional members; never rename or narrow one that was written.
  */
+
+/** The other ensemble, and the frames of the one they were held in; of many the first are named. */
+const splitFrames = z.object({
+  ensembleId: z.string(),
+  name: z.string(),
+  frames: z.array(z.number()).max(500),
+  count: z.number(),
+});
 
 const answers = z.object({
   energyUnit: z.string().nullable(),
@@ -76,6 +85,14 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
     }),
   }),
   z.object({ type: z.literal("hold"), data: z.object({ frame: z.number(), reason: z.string() }) }),
+  z.object({
+    type: z.literal("split-off"),
+    data: splitFrames,
+  }),
+  z.object({
+    type: z.literal("split-from"),
+    data: splitFrames,
+  }),
   z.object({
     type: z.literal("release"),
     data: z.object({ frame: z.number(), reason: z.string(), heldFor: z.string() }),
@@ -263,6 +280,16 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return {
         text: `Answered: ${entry.data.optionText}`,
         detail: `${entry.data.text}${entry.data.released > 0 ? ` ${plural(entry.data.released, "frame")} released.` : ""}`,
+      };
+    case "split-off":
+      return {
+        text: `Made an ensemble of ${plural(entry.data.count, "held frame")}: ${entry.data.name}`,
+        detail: framesWords(entry.data.frames),
+      };
+    case "split-from":
+      return {
+        text: `Made of ${plural(entry.data.count, "held frame")} of ${entry.data.name}`,
+        detail: `there ${framesWords(entry.data.frames).toLowerCase()}`,
       };
     case "hold":
       return { text: `Held frame ${entry.data.frame}`, detail: entry.data.reason };

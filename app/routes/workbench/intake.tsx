@@ -8,6 +8,7 @@ import type { Actor } from "~/services/auth/access.server";
 import { answerQuestions } from "~/services/ensembles/answer-questions.server";
 import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
 import { ensembleNameSchema, renameEnsemble } from "~/services/ensembles/rename-ensemble.server";
+import { splitOff } from "~/services/ensembles/split-off.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import type { Route } from "./+types/intake";
 
@@ -50,6 +51,12 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
       const frame = Number(text("frame"));
       await (intent === "hold" ? holdFrame : releaseFrame)({ actor, ensembleId, frame, reason });
       return { ok: true, done: { intent, frame, reason } } satisfies ActAnswer;
+    }
+    case "split-off": {
+      if (!/^[1-9]\d{0,7}$/.test(text("frame")))
+        return refused("Give the number of a frame, counted from 1.");
+      const made = await splitOff({ actor, ensembleId, frame: Number(text("frame")) });
+      return { ok: true, done: { intent, made } } satisfies ActAnswer;
     }
     case "rename": {
       const name = ensembleNameSchema.safeParse(text("name"));

@@ -1,0 +1,228 @@
+import { Readable } from "node:stream";
+import { and, asc, eq, isNull, sql } from "drizzle-orm";
+import { db, inTransaction } from "../../db/client.server.ts";
+import { columns, ensembleFiles, ensembles, frames, series } from "../../db/schema.server.ts";
+import { env } from "../../env.server.ts";
+import { uploadFieldsSchema } from "../../lib/api/schemas.ts";
+import { DomainError } from "../../lib/errors.ts";
+import { canBeSplitOff, splitName } from "../../lib/intake/split-name.ts";
+import { FrameCutter, type FramePlace } from "../../lib/text/cut-frames.ts";
+import { type Actor, accessEnsemble, accessTeam, type Grant } from "../auth/access.server.ts";
+import { notFound } from "../http.server.ts";
+import { writeEntry } from "../logbook/write-entry.server.ts";
+import type { TakenIn } from "./finish-upload.server.ts";
+import { openFile } from "./open-file.server.ts";
+import type { FormPart, FormReader } from "./read-multipart.server.ts";
+import { readSource } from "./source-writer.server.ts";
+import { takeInFor } from "./take-in.server.ts";
+
+type At = Grant & { ensembleId: string };
+
+/** Frames that the logbook names; all are counted. */
+const NAMED_FRAMES = 500;
+
+interface HeldFrame {
+  number: number;
+  file: number;
+  line: number;
+}
+
+interface Parent {
+  name: string;
+  series: string;
+  note: string | null;
+  held: HeldFrame[];
+}
+
+/** The held frames that say the same of themselves as this one, and what they were held in. */
+async function findHeld(at: At, number: number): Promise<Parent> {
+  const [parent] = await db
+    .select({ name: ensembles.name, series: series.name })
+    .from(ensembles)
+    .innerJoin(series, eq(series.id, ensembles.seriesId))
+    .where(
+      and(eq(ensembles.id, at.ensembleId), eq(ensembles.teamId, at.teamId), isNull(ensembles.deletedAt)),
+    );
+  const [frame] = await db
+    .select()
+    .from(frames)
+    .where(and(eq(frames.ensembleId, at.ensembleId), eq(frames.number, number)));
+  if (parent === undefined || frame === undefined) throw notFound();
+  if (frame.state !== "held" || !canBeSplitOff(frame.holdReason) || frame.shape === null) {
+    throw new DomainError(
+      "conflict",
+      "No ensemble of its own",
+      `Frame ${number} is not held as another species, molecule or configuration: only such frames make an ensemble of their own.`,
+    );
+  }
+  const held = await db
+    .select({ number: frames.number, file: frames.file, line: frames.line })
+    .from(frames)
+    .where(
+      and(
+        eq(frames.ensembleId, at.ensembleId),
+        eq(frames.state, "held"),
+        eq(frames.holdReason, frame.holdReason ?? ""),
+        eq(frames.shape, frame.shape),
+        frame.note === null ? isNull(frames.note) : eq(frames.note, frame.note),
+      ),
+    )
+    .orderBy(asc(frames.number));
+  return { ...parent, note: frame.note, held };
+}
+
+/** Where the frames of one file stand in it: each reaches to the line of the frame behind it. */
+async function placesIn(at: At, file: number, held: readonly HeldFrame[]): Promise<FramePlace[]> {
+  const all = await db
+    .select({ number: frames.number, line: frames.line })
+    .from(frames)
+    .where(and(eq(frames.ensembleId, at.ensembleId), eq(frames.file, file)))
+    .orderBy(asc(frames.number));
+  const wanted = new Set(held.map(({ number }) => number));
+  return all.flatMap(({ number, line }, k) =>
+    wanted.has(number) ? [{ line, next: all[k + 1]?.line ?? null }] : [],
+  );
+}
+
+/** The kept bytes of the frames, as they stand in their file. */
+async function* cut(
+  file: { name: string; format: string; sourceId: string },
+  places: readonly FramePlace[],
+): AsyncGenerator<Buffer, void, undefined> {
+  const cutter = new FrameCutter({ file: file.name, records: file.format.startsWith("SDF"), places });
+  const opened = await openFile(readSource(file.sourceId), {
+    file: file.name,
+    limit: env().MAX_FILE_BYTES,
+    remark: () => {},
+  });
+  for await (const bytes of opened.bytes) {
+    const found = cutter.push(bytes);
+    if (found.length > 0) yield Buffer.concat(found);
+    if (cutter.done) return;
+  }
+  const rest = cutter.end();
+  if (rest.length > 0) yield Buffer.concat(rest);
+}
+
+/** "night-run.xyz.gz" and frames from 7 on: "night-run, frame 7 and 2 more.xyz". */
+function fileName(file: { name: string; format: string }, held: readonly HeldFrame[]): string {
+  const stem = file.name.replace(/(\.(xyz|extxyz|txt|sdf|sd|mol))?(\.gz)?$/i, "") || file.name;
+  const more = held.length > 1 ? ` and ${held.length - 1} more` : "";
+  const ending = file.format.startsWith("SDF") ? "sdf" : "xyz";
+  return `${stem.slice(0, 200)}, frame ${held[0]?.number ?? 0}${more}.${ending}`;
+}
+
+async function* parts(
+  at: At,
+  parent: Parent,
+  fields: Record<string, string>,
+): AsyncGenerator<FormPart, void, undefined> {
+  for (const [name, value] of Object.entries(fields)) yield { kind: "field", name, value };
+  const files = await db
+    .select()
+    .from(ensembleFiles)
+    .where(eq(ensembleFiles.ensembleId, at.ensembleId))
+    .orderBy(asc(ensembleFiles.position));
+  for (const file of files) {
+    const held = parent.held.filter((frame) => frame.file === file.position);
+    if (held.length === 0) continue;
+    const places = await placesIn(at, file.position, held);
+    const data = Readable.from(cut(file, places));
+    yield { kind: "file", name: "file", filename: fileName(file, held), data };
+  }
+}
+
+/** Number, unit and level as the parent's energies have them, where a request could name them so. */
+async function energiesOf(at: At): Promise<Record<string, string>> {
+  const [level] = await db
+    .select()
+    .from(columns)
+    .where(
+      and(
+        eq(columns.ensembleId, at.ensembleId),
+        eq(columns.kind, "energy"),
+        sql`${columns.origin} regexp '^(key|number|field):'`,
+      ),
+    )
+    .orderBy(asc(columns.ordinal))
+    .limit(1);
+  if (!level?.origin || level.unit === null) return {};
+  const fields: Record<string, string> = {
+    energyFrom: level.origin,
+    energyUnit: level.unit,
+    level: level.name,
+    ...(level.energyKind === null ? {} : { energyKind: level.energyKind }),
+    ...(level.temperature === null ? {} : { energyTemperature: String(level.temperature) }),
+  };
+  return uploadFieldsSchema.safeParse(fields).success ? fields : {};
+}
+
+/** Takes the frames in; where theirs are not the parent's energies, the person is asked as of any file. */
+async function takeFrames(actor: Actor, at: At, parent: Parent, name: string): Promise<TakenIn> {
+  const grant = await accessTeam(actor, "take-in", at.teamId);
+  const take = (energies: Record<string, string>) => {
+    const form: FormReader = {
+      parts: () => parts(at, parent, { name, series: parent.series, ...energies }),
+      drain: async () => {},
+    };
+    return takeInFor({ grantOf: async () => grant, form, interactive: true });
+  };
+  try {
+    return await take(await energiesOf(at));
+  } catch (error) {
+    if (!(error instanceof DomainError)) throw error;
+    // Read again with other answers since: it is the same ensemble all the same.
+    const { existing } = error.extra;
+    if (error.code === "conflict" && typeof existing === "string") {
+      return { ensembleId: existing, teamId: at.teamId, created: false };
+    }
+    if (error.code !== "invalid") throw error;
+    return take({});
+  }
+}
+
+export interface SplitOff {
+  ensembleId: string;
+  name: string;
+  frames: number;
+  /** False where these frames made one before. */
+  created: boolean;
+}
+
+/**
+ * Makes an ensemble of the held frames that are the same other species, molecule or configuration as the one named:
+ * their bytes are cut out of the kept files and go the way of any upload. In the parent they stay held. The same frames
+ * again give the same ensemble.
+ *
+ * @throws DomainError conflict where the frame is not held for such a reason, and what taking in throws
+ */
+export async function splitOff(options: {
+  actor: Actor;
+  ensembleId: string;
+  frame: number;
+}): Promise<SplitOff> {
+  const at = await accessEnsemble(options.actor, "compute", options.ensembleId);
+  const parent = await findHeld(at, options.frame);
+  const name = splitName(parent.name, parent.note);
+  const taken = await takeFrames(options.actor, at, parent, name);
+  const count = parent.held.length;
+  if (!taken.created) {
+    const [made] = await db
+      .select({ name: ensembles.name })
+      .from(ensembles)
+      .where(eq(ensembles.id, taken.ensembleId));
+    return { ensembleId: taken.ensembleId, name: made?.name ?? name, frames: count, created: false };
+  }
+  const named = parent.held.slice(0, NAMED_FRAMES).map(({ number }) => number);
+  await inTransaction(async (tx) => {
+    await writeEntry(tx, at, at, {
+      type: "split-off",
+      data: { ensembleId: taken.ensembleId, name, frames: named, count },
+    });
+    await writeEntry(tx, { teamId: at.teamId, ensembleId: taken.ensembleId }, at, {
+      type: "split-from",
+      data: { ensembleId: at.ensembleId, name: parent.name, frames: named, count },
+    });
+  });
+  return { ensembleId: taken.ensembleId, name, frames: count, created: true };
+}

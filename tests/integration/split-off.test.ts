@@ -1,0 +1,116 @@
+import { gzipSync } from "node:zlib";
+import { and, eq } from "drizzle-orm";
+import { beforeAll, describe, expect, it } from "vitest";
+import { db } from "~/db/client.server";
+import { logbook } from "~/db/schema.server";
+import type { Actor } from "~/services/auth/access.server";
+import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
+import { loadSource } from "~/services/ensembles/load-source.server";
+import { splitOff } from "~/services/ensembles/split-off.server";
+import { makeMember } from "../factories/people";
+import { BUTANE, frame, makeLab, takenIn } from "../factories/upload";
+
+let lab: Awaited<ReturnType<typeof makeLab>>;
+let actor: Actor;
+beforeAll(async () => {
+  lab = await makeLab();
+  actor = { kind: "user", userId: lab.analyst.id, sessionId: "s" };
+});
+
+const WATER = ["O 0.0000 0.0000 0.1173", "H 0.0000 0.7572 -0.4692", "H 0.0000 -0.7572 -0.4692"];
+/** The end methyl 3 Å away: another species of the same atoms. */
+const BROKEN = BUTANE.map((line, k) => {
+  const [symbol, x, y, z] = line.split(" ");
+  return [3, 11, 12, 13].includes(k) ? `${symbol} ${(Number(x) + 3).toFixed(4)} ${y} ${z}` : line;
+});
+
+const fields = { level: "A method", energyUnit: "kcal/mol", series: "Chains" };
+
+function mixture(tag: string): string {
+  return [
+    frame(`${tag}_1 energy=-1.5`),
+    frame(`${tag}_2 energy=-76.1`, WATER),
+    frame(`${tag}_3 energy=-1.4`),
+    frame(`${tag}_4 energy=-0.2`, BROKEN),
+    frame(`${tag}_5 energy=-76.3`, WATER),
+    frame(`${tag}_6 energy=-1.3`),
+  ].join("");
+}
+
+async function bytesOf(ensembleId: string): Promise<string> {
+  const { chunks } = await loadSource({ actor, ensembleId, position: 0 });
+  const all: Uint8Array[] = [];
+  for await (const chunk of chunks) all.push(chunk);
+  return Buffer.concat(all).toString();
+}
+
+const entries = (ensembleId: string, type: string) =>
+  db
+    .select({ data: logbook.data })
+    .from(logbook)
+    .where(and(eq(logbook.ensembleId, ensembleId), eq(logbook.type, type)));
+
+describe("held frames of something else", () => {
+  it("become an ensemble with their bytes, their energies and their series; both logbooks say so", async () => {
+    const parent = await takenIn(lab.token, [{ name: "mix.xyz", content: mixture("own") }], {
+      ...fields,
+      name: "Butane",
+    });
+    expect(parent.intake).toMatchObject({ accepted: 3, held: 3 });
+    const made = await splitOff({ actor, ensembleId: parent.id, frame: 5 });
+    expect(made).toMatchObject({ created: true, frames: 2 });
+    expect(made.name).toMatch(/^Butane, /);
+    const child = await describeEnsemble(lab.team.id, made.ensembleId);
+    expect(child).toMatchObject({
+      name: made.name,
+      formula: "H2O",
+      series: { name: "Chains" },
+      intake: { frames: 2, accepted: 2, held: 0, questions: [] },
+      levels: [{ name: "A method", unit: "kcal/mol", count: 2 }],
+    });
+    expect(await bytesOf(made.ensembleId)).toBe(
+      frame("own_2 energy=-76.1", WATER) + frame("own_5 energy=-76.3", WATER),
+    );
+    const there = { ensembleId: made.ensembleId, name: made.name, frames: [2, 5], count: 2 };
+    expect(await entries(parent.id, "split-off")).toEqual([{ data: there }]);
+    expect(await entries(made.ensembleId, "split-from")).toEqual([
+      { data: { ...there, ensembleId: parent.id, name: "Butane" } },
+    ]);
+    // In the parent they stay held.
+    expect(await describeEnsemble(lab.team.id, parent.id)).toMatchObject({
+      intake: { accepted: 3, held: 3 },
+    });
+  });
+
+  it("make the same ensemble again, by whichever of them it is asked", async () => {
+    const content = gzipSync(mixture("again"));
+    const parent = await takenIn(lab.token, [{ name: "mix.xyz.gz", content }], fields);
+    const first = await splitOff({ actor, ensembleId: parent.id, frame: 2 });
+    const second = await splitOff({ actor, ensembleId: parent.id, frame: 5 });
+    expect(second).toEqual({ ...first, created: false });
+    expect(await entries(parent.id, "split-off")).toHaveLength(1);
+  });
+
+  it("of one species are taken apart from those of another", async () => {
+    const parent = await takenIn(lab.token, [{ name: "mix.xyz", content: mixture("kinds") }], fields);
+    const made = await splitOff({ actor, ensembleId: parent.id, frame: 4 });
+    expect(made.frames).toBe(1);
+    expect(await bytesOf(made.ensembleId)).toBe(frame("kinds_4 energy=-0.2", BROKEN));
+  });
+
+  it("are refused where they are accepted, unknown, or asked for by a reader or a stranger", async () => {
+    const parent = await takenIn(lab.token, [{ name: "mix.xyz", content: mixture("no") }], fields);
+    const ask = (who: Actor, number: number) =>
+      splitOff({ actor: who, ensembleId: parent.id, frame: number });
+    await expect(ask(actor, 1)).rejects.toMatchObject({ code: "conflict" });
+    await expect(ask(actor, 99)).rejects.toMatchObject({ code: "not-found" });
+    const reader = await makeMember(lab.team.id, "reader");
+    await expect(ask({ kind: "user", userId: reader.id, sessionId: "s" }, 2)).rejects.toMatchObject({
+      code: "forbidden",
+    });
+    const stranger = await makeMember((await makeLab("Other")).team.id, "owner");
+    await expect(ask({ kind: "user", userId: stranger.id, sessionId: "s" }, 2)).rejects.toMatchObject({
+      code: "not-found",
+    });
+  });
+});
