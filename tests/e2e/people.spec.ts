@@ -1,6 +1,9 @@
 import { type Browser, type BrowserContext, type Page, expect as plainExpect } from "@playwright/test";
 import { expect, expectAccessible, hydrated, signIn, test } from "./base";
 
+// A wrong password is among what is tried.
+test.use({ allowRefusals: true });
+
 /** A new person in a browser of their own, by open sign-up: owner of a team of their own. */
 async function newOwner(page: Page, name: string, email: string): Promise<string> {
   await page.goto("/sign-up");
