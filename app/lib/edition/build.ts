@@ -12,6 +12,7 @@ import { editionSummary } from "./summary.ts";
 
 /** Everything that an edition is built from; the same source gives the same content. */
 export interface EditionSource {
+  team: string;
   ensemble: EditionContent["ensemble"];
   inputs: EditionContent["inputs"];
   level: EditionContent["level"];
@@ -48,6 +49,7 @@ export function buildContent(source: EditionSource): EditionContent {
       population: "fraction",
       entropy: "cal/(mol K)",
     },
+    team: source.team,
     ensemble: source.ensemble,
     inputs: source.inputs,
     level: source.level,

@@ -74,6 +74,8 @@ export const editionContentSchema = z.object({
   caution: z.string(),
   constants: z.string(),
   units: z.record(z.string(), z.string().nullable()),
+  /** Name of the team. */
+  team: z.string(),
   ensemble: z.object({
     name: z.string(),
     formula: z.string(),
@@ -152,6 +154,8 @@ export const editionRecipeSchema = z.object({
   weights: z.enum(["auto", "copies", "degeneracy"]),
   /** Ids of the columns shown, in the order of the content. */
   columns: z.array(z.string()),
+  /** What changed since the edition before, in words. */
+  changed: z.array(z.string()).default([]),
 });
 export type EditionRecipe = z.infer<typeof editionRecipeSchema>;
 

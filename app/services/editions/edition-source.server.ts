@@ -30,7 +30,7 @@ interface FrameFact {
 }
 
 /** Label and place of every frame of the ensemble's own molecule, whatever its state. */
-async function ownFrames(ensembleId: string): Promise<Map<number, FrameFact>> {
+export async function ownFrames(ensembleId: string): Promise<Map<number, FrameFact>> {
   const rows = await db
     .select({ number: frames.number, label: frames.label, index: frames.indexInShape })
     .from(frames)
@@ -150,12 +150,13 @@ export function describeForEdition(ensemble: EnsembleRow): EditionContent["ensem
 export async function collectEdition(options: {
   ensemble: EnsembleRow;
   described: EditionContent["ensemble"];
+  team: string;
   recipe: EditionRecipe;
   result: Omit<SiftResult, "seconds">;
   files: EditionContent["inputs"]["files"];
   version: string;
 }): Promise<CollectedEdition> {
-  const { ensemble, described, recipe, result, files, version } = options;
+  const { ensemble, described, team, recipe, result, files, version } = options;
   const graph = unpackMolecule(ensemble);
   const facts = await ownFrames(ensemble.id);
   const indexOf = (frame: number) => facts.get(frame)?.index ?? -1;
@@ -174,6 +175,7 @@ export async function collectEdition(options: {
       columns: shown.map(({ id, name }, k) => ({ id, name, sha256: contentColumns[k]?.sha256 ?? "" })),
     },
     source: {
+      team,
       ensemble: described,
       inputs: { files, framesSha256 },
       level: level

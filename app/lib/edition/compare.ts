@@ -1,0 +1,205 @@
+import {
+  capital,
+  fixed,
+  formatCount,
+  formatEnergy,
+  formatPercent,
+  formatTemperature,
+  plural,
+  pluralWord,
+  withUnit,
+} from "../format.ts";
+import { conformerName } from "../workbench/conformers.ts";
+import { joinWords } from "../workbench/findings.ts";
+import { ATOM_SET_WORDS } from "../workbench/recipe-words.ts";
+import type { EditionContent } from "./content.ts";
+
+/** One setting or count that differs, as both editions have it. */
+export interface EditionChange {
+  what: string;
+  before: string;
+  after: string;
+}
+
+/** A conformer in one edition or both. */
+export interface ComparedConformer {
+  frame: number;
+  /** "c3"; null where it is no conformer of that edition. */
+  before: string | null;
+  after: string | null;
+  populationBefore: number | null;
+  populationAfter: number | null;
+  /** What became of it, where it stands in one edition only. */
+  note: string | null;
+}
+
+export interface EditionComparison {
+  /** What changed, in short words; one entry at least. */
+  words: string[];
+  changes: EditionChange[];
+  /** Those of the later edition in its order, then those that are gone. */
+  conformers: ComparedConformer[];
+}
+
+/** What a comparison looks at; the state of an ensemble that is not frozen yet has it too. */
+export type Comparable = Pick<
+  EditionContent,
+  "ensemble" | "inputs" | "level" | "recipe" | "kept" | "dropped" | "held" | "outsideWindow" | "populations"
+> & { columns: readonly { name: string; sha256: string }[] };
+
+/** Populations nearer than this print alike. */
+const SAME_POPULATION = 5e-4;
+
+/**
+ * What changed from one edition to a later one, in words and numbers. Frames keep their numbers for good, so conformers are
+ * matched by frame.
+ *
+ * @example compareEditions(first, second).words // ["column shift added", "populations unchanged"]
+ */
+export function compareEditions(before: Comparable, after: Comparable): EditionComparison {
+  const changes = changesOf(before, after).filter((change) => change.before !== change.after);
+  const conformers = compareConformers(before, after);
+  const words = [
+    fileWords(before, after),
+    ...changes.map((change) => `${change.what}: ${change.after} instead of ${change.before}`),
+    ...columnWords(before, after),
+    heldWords(before, after),
+    populationWords(before, after, conformers),
+  ].filter((word) => word !== null);
+  return { words: words.length > 0 ? words : ["nothing changed"], changes, conformers };
+}
+
+/** The words on a first edition, which nothing stands before. */
+export function firstWords(content: Pick<EditionContent, "kept" | "level">): string {
+  return `the first: ${plural(content.kept.length, "conformer")}, ${content.level?.name ?? "without energies"}`;
+}
+
+const energy = (value: number | null) =>
+  value === null ? "none" : withUnit(formatEnergy(value), "kcal/mol");
+
+function changesOf(a: Comparable, b: Comparable): EditionChange[] {
+  const pair = (what: string, of: (content: Comparable) => string): EditionChange => ({
+    what,
+    before: of(a),
+    after: of(b),
+  });
+  return [
+    pair("conformers", ({ kept }) => formatCount(kept.length)),
+    pair("accepted frames", ({ ensemble }) => formatCount(ensemble.accepted)),
+    pair("level", ({ level }) => level?.name ?? "none"),
+    pair("temperature", ({ populations }) =>
+      populations === null ? "none" : withUnit(formatTemperature(populations.temperature), "K"),
+    ),
+    pair("weights", ({ populations }) => populations?.weights ?? "none"),
+    pair("energy tolerance", ({ recipe }) => energy(recipe.energyTolerance)),
+    pair("RMSD tolerance", ({ recipe }) => withUnit(fixed(recipe.rmsdTolerance, 3), "Å")),
+    pair("window", ({ recipe }) => energy(recipe.window)),
+    pair("atoms compared", ({ recipe }) => ATOM_SET_WORDS[recipe.atoms]),
+    pair("exchange of equivalent atoms", ({ recipe }) => (recipe.symmetry ? "on" : "off")),
+    pair("mirror images", ({ recipe }) => (recipe.mirror === "merge" ? "merged" : "kept apart")),
+    pair("taken as", ({ recipe }) => recipe.chirality),
+  ];
+}
+
+function fileWords(a: Comparable, b: Comparable): string | null {
+  const known = new Set(a.inputs.files.map(({ sha256 }) => sha256));
+  const added = b.inputs.files.filter(({ sha256 }) => !known.has(sha256));
+  return added.length === 0
+    ? null
+    : `${pluralWord(added.length, "file")} added: ${joinWords(added.map(({ name }) => name))}`;
+}
+
+function columnWords(a: Comparable, b: Comparable): string[] {
+  const before = new Map(a.columns.map(({ name, sha256 }) => [name, sha256]));
+  const after = new Set(b.columns.map(({ name }) => name));
+  const named = (names: string[], what: string) =>
+    names.length === 0
+      ? []
+      : names.length > 4
+        ? [`${pluralWord(names.length, "column")} ${what}`]
+        : [`${names.length === 1 ? "column" : "columns"} ${joinWords(names)} ${what}`];
+  const names = (columns: readonly { name: string }[]) => columns.map(({ name }) => name);
+  return [
+    ...named(names(b.columns.filter(({ name }) => !before.has(name))), "added"),
+    ...named(
+      names(b.columns.filter(({ name, sha256 }) => before.has(name) && before.get(name) !== sha256)),
+      "with other numbers",
+    ),
+    ...named(names(a.columns.filter(({ name }) => !after.has(name))), "gone"),
+  ];
+}
+
+function heldWords(a: Comparable, b: Comparable): string | null {
+  const before = new Set(a.held.map(({ frame }) => frame));
+  const after = new Set(b.held.map(({ frame }) => frame));
+  const held = [...after].filter((frame) => !before.has(frame)).length;
+  const released = [...before].filter((frame) => !after.has(frame)).length;
+  const parts = [
+    held > 0 ? `${plural(held, "frame")} more held` : null,
+    released > 0 ? `${plural(released, "frame")} released` : null,
+  ].filter((part) => part !== null);
+  return parts.length === 0 ? null : parts.join(", ");
+}
+
+function populationWords(
+  a: Comparable,
+  b: Comparable,
+  conformers: readonly ComparedConformer[],
+): string | null {
+  if (a.populations === null || b.populations === null) return null;
+  let largest: ComparedConformer | null = null;
+  const change = (one: ComparedConformer) =>
+    Math.abs((one.populationAfter ?? 0) - (one.populationBefore ?? 0));
+  for (const one of conformers) if (largest === null || change(one) > change(largest)) largest = one;
+  if (largest === null || change(largest) < SAME_POPULATION) return "populations unchanged";
+  const from = formatPercent(largest.populationBefore ?? 0, 1);
+  const to = formatPercent(largest.populationAfter ?? 0, 1);
+  return `largest change of a population: frame ${largest.frame} from ${from} to ${to}`;
+}
+
+function compareConformers(a: Comparable, b: Comparable): ComparedConformer[] {
+  const before = placesOf(a);
+  const after = placesOf(b);
+  const row = (frame: number): ComparedConformer => ({
+    frame,
+    before: before.get(frame)?.name ?? null,
+    after: after.get(frame)?.name ?? null,
+    populationBefore: before.get(frame)?.population ?? null,
+    populationAfter: after.get(frame)?.population ?? null,
+    note: before.has(frame)
+      ? after.has(frame)
+        ? null
+        : fate(frame, b, after, "now")
+      : fate(frame, a, before, "before"),
+  });
+  const gone = a.kept.filter(({ frame }) => !after.has(frame));
+  return [...b.kept, ...gone].map(({ frame }) => row(frame));
+}
+
+function placesOf({ kept, populations }: Comparable) {
+  return new Map(
+    kept.map(({ frame }, index) => [
+      frame,
+      { name: conformerName(index), population: populations?.values[index]?.population ?? null },
+    ]),
+  );
+}
+
+/** What a frame was in the edition that does not have it as a conformer. */
+function fate(
+  frame: number,
+  content: Comparable,
+  places: ReadonlyMap<number, { name: string }>,
+  when: "now" | "before",
+): string {
+  const repeat = content.dropped.find((one) => one.frame === frame);
+  if (repeat) return `${when} a repeat of ${places.get(repeat.repeats)?.name ?? `frame ${repeat.repeats}`}`;
+  if (content.held.some((one) => one.frame === frame)) return `${when} held`;
+  if (content.outsideWindow.includes(frame)) return `${when} above the window`;
+  return when === "now" ? "now without part" : "not there before";
+}
+
+/** The words as one sentence. */
+export function changeSentence(words: readonly string[]): string {
+  return `${capital(words.join("; "))}.`;
+}

@@ -1,0 +1,107 @@
+import type { ConformerRow } from "../workbench/conformers.ts";
+import type { EditionComparison } from "./compare.ts";
+import type { EditionContent, EditionFile, EditionFinding } from "./content.ts";
+
+/** What loaders hand to the pages of editions: plain JSON, nothing that a reader of the page may not see. */
+
+/** A row of the table of editions. */
+export interface EditionRow {
+  number: number;
+  title: string;
+  remark: string;
+  frozenAt: string;
+  /** Name of the person; null where the product froze it, or the person is gone. */
+  by: string | null;
+  changed: string[];
+  liveLinks: number;
+  contentSha256: string;
+  version: string;
+  files: EditionFile[];
+  verified: VerifiedView | null;
+}
+
+/** How the last recomputation of an edition came out. */
+export interface VerifiedView {
+  same: boolean;
+  at: string;
+  version: string;
+  seconds: number;
+  files: number;
+  agree: number;
+  differing: { name: string; was: string; is: string | null }[];
+}
+
+/** A row of the table of links. No secret: it is kept nowhere. */
+export interface LinkRow {
+  id: string;
+  edition: number;
+  label: string;
+  sources: boolean;
+  logbook: boolean;
+  createdAt: string;
+  endsAt: string;
+  state: "live" | "ended" | "ended by hand";
+  opened: number;
+  openedAt: string | null;
+}
+
+/** Everything of the Hand-over section that is stored. */
+export interface HandOverView {
+  editions: EditionRow[];
+  links: LinkRow[];
+  /** What the next edition would bring, in words; null where nothing can be frozen yet. */
+  next: { number: number; changed: string[]; findings: EditionFinding[] } | null;
+  comparison: { before: number; after: number; result: EditionComparison } | null;
+  /** Longest life of a link, days. */
+  linkDays: number;
+  mayShare: boolean;
+  now: string;
+}
+
+/** One of the pictures of an edition: a conformer with its coordinates. */
+export interface EditionShape {
+  row: number;
+  positions: number[];
+}
+
+/** An edition as its page shows it, to guests and to members alike. */
+export interface EditionView {
+  number: number;
+  title: string;
+  remark: string;
+  frozenAt: string;
+  team: string;
+  version: string;
+  contentSha256: string;
+  ensemble: {
+    name: string;
+    formula: string;
+    atoms: number;
+    elements: number[];
+    bonds: number[];
+    chirality: EditionContent["ensemble"]["chirality"];
+    frames: number;
+    held: number;
+  };
+  level: { name: string; ordinal: number } | null;
+  temperature: number | null;
+  thermo: { freeEnergy: number; energy: number; entropy: number; effectiveCount: number } | null;
+  summary: string[];
+  methods: string[];
+  caution: string;
+  findings: EditionFinding[];
+  rows: ConformerRow[];
+  /** Conformers in all; `rows` holds the lowest of them. */
+  conformers: number;
+  /** Å, in the order of `rows`. */
+  extents: number[];
+  /** The most populated ones, with coordinates. */
+  shapes: EditionShape[];
+  /** Conformers whose coordinates can be fetched for the 3D view. */
+  viewable: number;
+  files: EditionFile[];
+  sources: { position: number; name: string; sha256: string; bytes: number }[];
+  changed: string[];
+  verified: VerifiedView | null;
+  citations: { text: string; bibtex: string; cff: string };
+}

@@ -1,0 +1,78 @@
+import { eq } from "drizzle-orm";
+import { db } from "../../db/client.server.ts";
+import { columns, type ensembles } from "../../db/schema.server.ts";
+import { buildContent } from "../../lib/edition/build.ts";
+import type { EditionContent } from "../../lib/edition/content.ts";
+import { type FoundSift, readResult } from "../sifts/find-sift.server.ts";
+import { describeForEdition, editionSources } from "./edition-source.server.ts";
+import { EDITION_CODE_VERSION, productVersion } from "./product-version.ts";
+
+const NOTHING = "0".repeat(64);
+
+/** Columns by name with the checksums that the table keeps; their numbers are not read. */
+async function columnHeads(ensembleId: string) {
+  return db
+    .select({
+      id: columns.id,
+      name: columns.name,
+      kind: columns.kind,
+      unit: columns.unit,
+      rule: columns.rule,
+      energyKind: columns.energyKind,
+      temperature: columns.temperature,
+      kindStated: columns.kindStated,
+      ordinal: columns.ordinal,
+      sha: columns.dataSha,
+    })
+    .from(columns)
+    .where(eq(columns.ensembleId, ensembleId));
+}
+
+/**
+ * What an edition would say if it were frozen now, without coordinates and values: enough for what changed and for what is
+ * open. Null while the sift is not done.
+ */
+export async function draftEdition(options: {
+  ensemble: typeof ensembles.$inferSelect;
+  team: string;
+  sift: FoundSift;
+  temperature: number;
+  weights: "auto" | "copies" | "degeneracy";
+}): Promise<EditionContent | null> {
+  const { ensemble, team, sift, temperature, weights } = options;
+  const result = sift.status === "done" ? await readResult(sift.id) : null;
+  if (result === null) return null;
+  const heads = await columnHeads(ensemble.id);
+  const level = heads.find(({ id }) => id === sift.recipe.level);
+  return buildContent({
+    team,
+    ensemble: describeForEdition(ensemble),
+    inputs: { files: await editionSources(ensemble.id), framesSha256: NOTHING },
+    level: level
+      ? {
+          name: level.name,
+          unit: level.unit ?? "",
+          energyKind: level.energyKind ?? "electronic",
+          temperature: level.temperature,
+          kindStated: level.kindStated,
+          ordinal: level.ordinal,
+        }
+      : null,
+    recipe: sift.recipe,
+    result,
+    labels: [],
+    energies: [],
+    positions: new Float64Array(3 * ensemble.atoms * result.kept.length),
+    temperature,
+    weights,
+    columns: heads.map(({ name, kind, unit, rule, sha }) => ({
+      name,
+      kind,
+      unit,
+      rule,
+      values: [],
+      sha256: sha?.toString("hex") ?? NOTHING,
+    })),
+    version: productVersion(EDITION_CODE_VERSION),
+  });
+}

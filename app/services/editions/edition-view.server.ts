@@ -1,0 +1,100 @@
+import { citationBibtex, citationCff, citationText } from "../../lib/edition/citation.ts";
+import { editionRows } from "../../lib/edition/rows.ts";
+import { shownRows } from "../../lib/edition/shown.ts";
+import type { EditionShape, EditionView, VerifiedView } from "../../lib/edition/views.ts";
+import { type FoundEdition, findPositions, type LastVerification } from "./find-edition.server.ts";
+
+/** Rows of the table of a page; the files hold all. */
+const MOST_ROWS = 500;
+const SHAPES = 4;
+/** Decimals of coordinates in a page: a tenth of a hundredth of an Å is less than a pixel. */
+const DECIMALS = 4;
+
+/** What a page says of the last recomputation. */
+export function verifiedView(last: LastVerification | null): VerifiedView | null {
+  if (last === null) return null;
+  const differing = last.files.filter(({ was, is }) => was !== is);
+  return {
+    same: last.same,
+    at: last.at,
+    version: last.version,
+    seconds: last.seconds,
+    files: last.files.length,
+    agree: last.files.length - differing.length,
+    differing,
+  };
+}
+
+function shapesOf(edition: FoundEdition, positions: Float64Array): EditionShape[] {
+  const length = 3 * edition.content.ensemble.atoms;
+  const rows = shownRows(edition.content, Math.min(SHAPES, positions.length / length));
+  return rows.map((row, place) => ({
+    row,
+    positions: Array.from(positions.subarray(place * length, (place + 1) * length), (value) =>
+      Number(value.toFixed(DECIMALS)),
+    ),
+  }));
+}
+
+/**
+ * An edition as its page shows it: no ids, no people. Access has been decided before.
+ *
+ * @param options.sources true where the original files may be downloaded
+ */
+export async function toEditionView(
+  edition: FoundEdition,
+  options: { sources: boolean; verified: LastVerification | null },
+): Promise<EditionView> {
+  const { content } = edition;
+  const positions = await findPositions(edition.id);
+  const frozenAt = edition.createdAt.toISOString();
+  const cited = {
+    team: content.team,
+    ensemble: content.ensemble.name,
+    number: edition.number,
+    title: edition.title,
+    frozenAt,
+    contentSha256: edition.contentSha256,
+    version: edition.version,
+  };
+  const { name, formula, atoms, elements, bonds, chirality, frames, held } = content.ensemble;
+  return {
+    number: edition.number,
+    title: edition.title,
+    remark: edition.remark,
+    frozenAt,
+    team: content.team,
+    version: edition.version,
+    contentSha256: edition.contentSha256,
+    ensemble: { name, formula, atoms, elements, bonds, chirality, frames, held },
+    level: content.level && { name: content.level.name, ordinal: content.level.ordinal },
+    temperature: content.populations?.temperature ?? null,
+    thermo: content.populations && {
+      freeEnergy: content.populations.freeEnergy,
+      energy: content.populations.energy,
+      entropy: content.populations.entropy,
+      effectiveCount: content.populations.effectiveCount,
+    },
+    summary: content.words.summary,
+    methods: content.words.methods.split("\n"),
+    caution: content.caution,
+    findings: content.findings,
+    rows: editionRows(content).slice(0, MOST_ROWS),
+    conformers: content.kept.length,
+    extents: content.kept.slice(0, MOST_ROWS).map(({ extent }) => extent),
+    shapes: shapesOf(edition, positions),
+    viewable: positions.length / (3 * atoms),
+    files: edition.files,
+    sources: options.sources
+      ? content.inputs.files.map(({ name: file, sha256, bytes }, position) => ({
+          position,
+          name: file,
+          sha256,
+          bytes,
+        }))
+      : [],
+    changed: edition.changed,
+    verified: verifiedView(options.verified),
+    citations: { text: citationText(cited), bibtex: citationBibtex(cited), cff: citationCff(cited) },
+  };
+}

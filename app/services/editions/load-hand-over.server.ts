@@ -1,0 +1,124 @@
+import { and, desc, eq } from "drizzle-orm";
+import { z } from "zod";
+import { db } from "../../db/client.server.ts";
+import { editions, teams, users } from "../../db/schema.server.ts";
+import { compareEditions, firstWords } from "../../lib/edition/compare.ts";
+import { editionFileSchema, editionRecipeSchema } from "../../lib/edition/content.ts";
+import type { EditionRow, HandOverView, LinkRow } from "../../lib/edition/views.ts";
+import { type Actor, accessEnsemble, roleMay } from "../auth/access.server.ts";
+import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
+import { findLinks } from "../links/list-links.server.ts";
+import { findSift } from "../sifts/find-sift.server.ts";
+import { draftEdition } from "./draft-edition.server.ts";
+import { verifiedView } from "./edition-view.server.ts";
+import { findEdition, lastVerification } from "./find-edition.server.ts";
+import { productVersion } from "./product-version.ts";
+
+/** Editions in the table; older ones are reached by their number. */
+const MOST_EDITIONS = 100;
+
+type At = { teamId: string; ensembleId: string };
+type Row = EditionRow & { id: string };
+
+async function findRows(at: At, links: readonly LinkRow[]): Promise<Row[]> {
+  const rows = await db
+    .select({
+      id: editions.id,
+      number: editions.number,
+      title: editions.title,
+      remark: editions.remark,
+      createdAt: editions.createdAt,
+      by: users.name,
+      recipe: editions.recipe,
+      contentSha: editions.contentSha,
+      codeVersion: editions.codeVersion,
+      files: editions.files,
+    })
+    .from(editions)
+    .leftJoin(users, eq(users.id, editions.createdBy))
+    .where(and(eq(editions.teamId, at.teamId), eq(editions.ensembleId, at.ensembleId)))
+    .orderBy(desc(editions.number))
+    .limit(MOST_EDITIONS);
+  return Promise.all(
+    rows.map(async ({ createdAt, recipe, contentSha, codeVersion, files, ...row }) => ({
+      ...row,
+      frozenAt: createdAt.toISOString(),
+      changed: editionRecipeSchema.parse(recipe).changed,
+      liveLinks: links.filter(({ edition, state }) => edition === row.number && state === "live").length,
+      contentSha256: contentSha?.toString("hex") ?? "",
+      version: productVersion(codeVersion),
+      files: z.array(editionFileSchema).parse(files),
+      verified: verifiedView(await lastVerification(row.id)),
+    })),
+  );
+}
+
+async function nextOf(
+  at: At,
+  last: Row | undefined,
+  shown: { siftId: string | null; temperature: number; weights: "auto" | "copies" | "degeneracy" },
+): Promise<HandOverView["next"]> {
+  if (shown.siftId === null) return null;
+  const sift = await findSift(shown.siftId);
+  if (sift.ensembleId !== at.ensembleId || !sift.current) return null;
+  const { ensemble, team } = await findEnsembleRow(at.teamId, at.ensembleId);
+  const { temperature, weights } = shown;
+  const draft = await draftEdition({ ensemble, team: team.name, sift, temperature, weights });
+  if (draft === null) return null;
+  const findings = draft.findings.filter(({ kind }) => kind === "open");
+  if (last === undefined) return { number: 1, changed: [firstWords(draft)], findings };
+  const before = await findEdition(at.teamId, last.id);
+  return { number: last.number + 1, changed: compareEditions(before.content, draft).words, findings };
+}
+
+/** Two editions by their numbers, the earlier first; null where one of them is not there. */
+async function comparisonOf(at: At, rows: readonly Row[], asked: readonly [number, number] | null) {
+  if (asked === null) return null;
+  const [before, after] = [Math.min(...asked), Math.max(...asked)];
+  const first = rows.find(({ number }) => number === before);
+  const second = rows.find(({ number }) => number === after);
+  if (!first || !second || before === after) return null;
+  const [a, b] = await Promise.all([findEdition(at.teamId, first.id), findEdition(at.teamId, second.id)]);
+  return { before, after, result: compareEditions(a.content, b.content) };
+}
+
+async function linkDaysOf(teamId: string): Promise<number> {
+  const rows = await db.select({ days: teams.linkDays }).from(teams).where(eq(teams.id, teamId));
+  return rows[0]?.days ?? 0;
+}
+
+/**
+ * Editions, links, and what the next edition would bring. Guests of the example see none of it.
+ *
+ * @param options.compare numbers of two editions
+ */
+export async function loadHandOver(options: {
+  actor: Actor;
+  ensembleId: string;
+  siftId: string | null;
+  temperature: number;
+  weights: "auto" | "copies" | "degeneracy";
+  compare: readonly [number, number] | null;
+}): Promise<HandOverView> {
+  const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
+  const now = new Date();
+  const nothing = { editions: [], links: [], next: null, comparison: null, linkDays: 0, mayShare: false };
+  if (grant.role === "guest") return { ...nothing, now: now.toISOString() };
+  const mayShare = roleMay(grant.role, "share");
+  const links = await findLinks(grant.teamId, grant.ensembleId, now);
+  const rows = await findRows(grant, links);
+  const [next, comparison, linkDays] = await Promise.all([
+    nextOf(grant, rows[0], options),
+    comparisonOf(grant, rows, options.compare),
+    linkDaysOf(grant.teamId),
+  ]);
+  return {
+    editions: rows.map(({ id: _id, ...row }) => row),
+    links,
+    next,
+    comparison,
+    linkDays,
+    mayShare,
+    now: now.toISOString(),
+  };
+}

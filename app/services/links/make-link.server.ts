@@ -1,0 +1,95 @@
+import { eq } from "drizzle-orm";
+import { z } from "zod";
+import { inTransaction } from "../../db/client.server.ts";
+import { newId } from "../../db/new-id.server.ts";
+import { editions, links, teams } from "../../db/schema.server.ts";
+import { DomainError } from "../../lib/errors.ts";
+import { type Actor, accessEdition } from "../auth/access.server.ts";
+import { notFound } from "../http.server.ts";
+import { type Doer, writeEntry } from "../logbook/write-entry.server.ts";
+import { linkPrefix, linkSha, newLinkSecret } from "./link-secret.ts";
+
+const DAY_MS = 86_400_000;
+export const DEFAULT_LINK_DAYS = 14;
+
+export const newLinkSchema = z.strictObject({
+  label: z.string().trim().min(1, "Say for whom the link is.").max(120, "Up to 120 characters."),
+  /** Whoever holds an ended link reads it. */
+  contact: z.string().trim().max(200, "Up to 200 characters."),
+  days: z
+    .number({ error: "A whole number of days." })
+    .int("A whole number of days.")
+    .min(1, "At least one day."),
+  sources: z.boolean(),
+  logbook: z.boolean(),
+});
+export type NewLink = z.infer<typeof newLinkSchema>;
+
+export interface MadeLink {
+  /** Shown once, kept nowhere. */
+  secret: string;
+  prefix: string;
+  endsAt: Date;
+}
+
+interface At extends Doer {
+  teamId: string;
+  ensembleId: string;
+  editionId: string;
+}
+
+/**
+ * Makes a link to an edition; access has been decided before.
+ *
+ * @param asked.days 0 makes one that has ended already: what its holder reads then can be looked at
+ * @throws DomainError invalid where it would live longer than the team allows
+ */
+export async function makeLinkFor(at: At, asked: NewLink, now = new Date()): Promise<MadeLink> {
+  const secret = newLinkSecret();
+  const prefix = linkPrefix(secret);
+  const endsAt = new Date(now.getTime() + asked.days * DAY_MS);
+  await inTransaction(async (tx) => {
+    const rows = await tx
+      .select({ number: editions.number, linkDays: teams.linkDays })
+      .from(editions)
+      .innerJoin(teams, eq(teams.id, editions.teamId))
+      .where(eq(editions.id, at.editionId));
+    const row = rows[0];
+    if (row === undefined) throw notFound();
+    if (asked.days > row.linkDays) {
+      const message = `A link of this team lives at most ${row.linkDays} days; an owner can change that on the team's page.`;
+      throw new DomainError("invalid", "Too long", message, { faults: [{ field: "days", message }] });
+    }
+    await tx.insert(links).values({
+      id: newId(),
+      teamId: at.teamId,
+      editionId: at.editionId,
+      secretSha: linkSha(secret),
+      prefix,
+      label: asked.label,
+      contact: asked.contact,
+      sources: asked.sources,
+      logbook: asked.logbook,
+      createdBy: at.userId,
+      createdAt: now,
+      endsAt,
+    });
+    const { label, sources, logbook } = asked;
+    await writeEntry(tx, at, at, {
+      type: "link-made",
+      data: { number: row.number, prefix, label, endsAt: endsAt.toISOString(), sources, logbook },
+    });
+  });
+  return { secret, prefix, endsAt };
+}
+
+/** Makes a link as a person. The secret is in the answer and nowhere else. */
+export async function makeLink(options: {
+  actor: Actor;
+  ensembleId: string;
+  number: number;
+  link: NewLink;
+}): Promise<MadeLink> {
+  const grant = await accessEdition(options.actor, "share", options.ensembleId, options.number);
+  return makeLinkFor(grant, newLinkSchema.parse(options.link));
+}
