@@ -193,6 +193,11 @@ export const columnSchema = z
     name: z.string(),
     kind: z.enum(["energy", "property"]),
     unit: z.string().nullable(),
+    rule: z
+      .string()
+      .nullable()
+      .optional()
+      .meta({ description: "How a property is averaged: linear, r-6, r-3 or circular; null for energies." }),
     count: z.number().int(),
     missing: z.number().int(),
   })
@@ -281,6 +286,125 @@ export const decisionAnswerSchema = z
     intake: intakeSchema,
   })
   .meta({ id: "DecisionAnswer" });
+
+// --- columns -----------------------------------------------------------------------------------
+
+const yes = z.enum(["true", "false"]).transform((text) => text === "true");
+
+/** Fields beside the file of further columns: the contract's first, then answers to what a file may leave open. */
+export const columnFieldsSchema = z
+  .strictObject({
+    kind: z.enum(["energy", "property"]).optional().meta({
+      description: "For all columns of a table; without it the unit decides, column by column.",
+    }),
+    level: uploadFieldsSchema.shape.level.meta({
+      description:
+        "Name of the level of the energies: needed with a structure file; in a table each header names its own.",
+    }),
+    energyUnit: uploadFieldsSchema.shape.energyUnit,
+    energyFrom: uploadFieldsSchema.shape.energyFrom,
+    energyKind: uploadFieldsSchema.shape.energyKind,
+    energyTemperature: uploadFieldsSchema.shape.energyTemperature,
+    rule: z.enum(["linear", "r-6", "r-3", "circular"]).optional().meta({
+      description: "How the properties are averaged. Default: linear, circular for angles in ° or deg.",
+    }),
+    replace: yes
+      .optional()
+      .meta(shownAs({ type: "boolean", default: false }, "Columns of the same name get the new numbers.")),
+    geometryLevel: z.string().trim().min(1).max(120).optional().meta({
+      description: "Level of the geometry, where it is another than that of the energy.",
+    }),
+    solvent: z.string().trim().min(1).max(120).optional(),
+    match: z.enum(["structure", "label", "number"]).optional().meta({
+      description: "How the frames of a structure file are matched. Default: structure.",
+    }),
+    sift: id.optional().meta({
+      description: "Matches within the tolerance of this sift; default 0.2 Å, heavy+polarH.",
+    }),
+    delimiter: z.enum(["comma", "semicolon", "tab", "bar"]).optional(),
+    numbers: z.enum(["point", "comma", "point-thousands", "comma-thousands"]).optional().meta({
+      description: "How a table writes numbers: 1.5, 1,5, 1,234.5 or 1.234,5.",
+    }),
+    header: z.enum(["first", "none"]).optional(),
+    key: z.enum(["frame", "label"]).optional().meta({ description: "What the first column holds." }),
+    firstFrame: z
+      .enum(["0", "1"])
+      .optional()
+      .meta({ description: "Number that a table gives the first frame." }),
+    labels: z.enum(["exact", "loose"]).optional().meta({
+      description: "loose: labels that differ in case or blanks only are the same.",
+    }),
+    perAtom: z.enum(["bound", "plain"]).optional().meta({
+      description: "plain: headers such as C6 name no atom.",
+    }),
+    columns: z.string().max(60_000).optional().meta({
+      description:
+        "JSON: choices for single columns, [{column, use, name, unit, kind, rule, atom, quantity}].",
+    }),
+    preview: yes
+      .optional()
+      .meta(shownAs({ type: "boolean", default: false }, "Says what would be kept, and keeps nothing.")),
+  })
+  .meta({ id: "ColumnFields" });
+export type ColumnFields = z.infer<typeof columnFieldsSchema>;
+
+/** What a caller may choose of single columns of a table. */
+export const columnChoicesSchema = z
+  .array(
+    z.strictObject({
+      column: z.number().int().min(2).max(10_000),
+      use: z.boolean().optional(),
+      name: z.string().trim().min(1).max(120).optional(),
+      unit: z.string().trim().max(40).optional(),
+      kind: z.enum(["energy", "property"]).optional(),
+      rule: z.enum(["linear", "r-6", "r-3", "circular"]).optional(),
+      atom: z.number().int().positive().nullable().optional(),
+      quantity: z.string().trim().min(1).max(120).optional(),
+    }),
+  )
+  .max(3_000);
+
+export const columnsAnswerSchema = z
+  .object({ columns: z.array(columnSchema), messages: z.array(intakeMessageSchema) })
+  .meta({ id: "ColumnsAnswer" });
+
+export const columnsPreviewSchema = z
+  .object({
+    file: z.string(),
+    type: z.enum(["table", "structures"]),
+    delimiter: z.string().nullable(),
+    header: z.array(z.string()),
+    rows: z.array(z.array(z.string())),
+    columns: z.array(
+      z.object({
+        column: z.number().int().nullable(),
+        header: z.string(),
+        name: z.string(),
+        kind: z.enum(["energy", "property"]),
+        unit: z.string().nullable(),
+        why: z.string(),
+        rule: z.string().nullable(),
+        atom: z.number().int().nullable(),
+        quantity: z.string().nullable(),
+        count: z.number().int(),
+        exists: z.boolean().meta({ description: "A column of this name is there already." }),
+      }),
+    ),
+    leftOut: z.array(z.object({ column: z.number().int().nullable(), header: z.string(), why: z.string() })),
+    match: z.object({
+      by: z.enum(["frame", "label", "structure", "number"]),
+      text: z.string(),
+      rows: z.number().int(),
+      matched: z.number().int(),
+      missing: z.number().int(),
+      unknown: z.number().int(),
+      shared: z.number().int(),
+    }),
+    questions: z.array(questionSchema),
+    messages: z.array(intakeMessageSchema),
+  })
+  .meta({ id: "ColumnsPreview" });
+export type ColumnsPreview = z.infer<typeof columnsPreviewSchema>;
 
 // --- sifts -------------------------------------------------------------------------------------
 
