@@ -27,6 +27,7 @@ function row(over: Partial<EnsembleRow> = {}): EnsembleRow {
     series: { id: "s1", name: "Tails" },
     frames: 100,
     held: 0,
+    waiting: 0,
     openQuestions: 0,
     levels: [{ name: "MMFF94", ordinal: 1 }],
     fileNames: ["run.xyz"],
@@ -85,11 +86,12 @@ describe("rows", () => {
   it("are left out by level, state, held and series", () => {
     const rows = [
       row({ name: "asks", openQuestions: 1, held: 3, sift: null }),
+      row({ name: "waits", openQuestions: 1, held: 90, waiting: 90, sift: null, levels: [] }),
       row({ name: "ready" }),
       row({ name: "other", series: { id: "s2", name: "Rings" }, levels: [] }),
     ];
     const only = (over: Partial<SeriesState>) => names(chooseRows(rows, { ...plain, ...over }));
-    expect(only({ state: "asks" })).toEqual(["asks"]);
+    expect(only({ state: "asks" })).toEqual(["asks", "waits"]);
     expect(only({ held: "some" })).toEqual(["asks"]);
     expect(only({ held: "none", level: "MMFF94" })).toEqual(["ready"]);
     expect(only({ series: "s2" })).toEqual(["other"]);

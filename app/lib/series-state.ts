@@ -115,7 +115,7 @@ function sortValue(row: EnsembleRow, by: SortKey): string | number | null {
     case "frames":
       return row.frames;
     case "held":
-      return row.held;
+      return heldFor(row);
     case "distinct":
       return row.sift?.distinct ?? null;
     case "strip":
@@ -154,7 +154,7 @@ export function chooseRows(rows: readonly EnsembleRow[], state: SeriesState): En
         (state.series === null || row.series.id === state.series) &&
         (state.level === null || row.levels.some((level) => level.name === state.level)) &&
         (state.state === null || rowState(row) === state.state) &&
-        (state.held === null || row.held > 0 === (state.held === "some")) &&
+        (state.held === null || heldFor(row) > 0 === (state.held === "some")) &&
         found(row, words),
     )
     .sort(
@@ -220,4 +220,9 @@ export function seriesFinding(rows: readonly EnsembleRow[]): string {
 /** What a filter leaves: "3 of 9 ensembles". */
 export function shownWords(shown: number, total: number): string {
   return `${formatCount(shown)} of ${plural(total, "ensemble")}`;
+}
+
+/** Frames held for a reason of their own: those that wait for an answer are no news of the structures. */
+function heldFor(row: EnsembleRow): number {
+  return row.held - row.waiting;
 }

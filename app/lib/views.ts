@@ -108,6 +108,8 @@ export interface EnsembleRow {
   series: { id: string; name: string };
   frames: number;
   held: number;
+  /** Of these the ones that wait for nothing but an answer. */
+  waiting: number;
   openQuestions: number;
   levels: { name: string; ordinal: number }[];
   fileNames: string[];

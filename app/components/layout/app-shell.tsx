@@ -1,4 +1,4 @@
-import type { ReactNode } from "react";
+import { type ReactNode, type RefObject, useEffect, useRef } from "react";
 import { href, Link, useLocation } from "react-router";
 import { ButtonLink } from "~/components/ui/button";
 import { linkClass } from "~/components/ui/text-link";
@@ -27,6 +27,8 @@ export function AppShell({
   results?: boolean;
   children: ReactNode;
 }) {
+  const main = useRef<HTMLElement>(null);
+  useFocusAfterMove(main);
   return (
     <div className="flex min-h-dvh flex-col">
       <a
@@ -36,13 +38,27 @@ export function AppShell({
         To the content
       </a>
       <Bar />
-      <main id="content" tabIndex={-1} className="flex-1 outline-none">
+      <main id="content" ref={main} tabIndex={-1} className="flex-1 outline-none">
         {children}
       </main>
       <Foot recipe={recipe} results={results} />
       <Toasts />
     </div>
   );
+}
+
+/**
+ * On another page of ours what had the focus is gone with the last one: the content takes it, so that keys and readers
+ * go on from there and not from the top of the window.
+ */
+function useFocusAfterMove(main: RefObject<HTMLElement | null>) {
+  const { key, pathname } = useLocation();
+  // biome-ignore lint/correctness/useExhaustiveDependencies: the page is another one when its address is
+  useEffect(() => {
+    const lost = document.activeElement === null || document.activeElement === document.body;
+    // The first page of a visit begins at the top, as everywhere.
+    if (key !== "default" && lost) main.current?.focus({ preventScroll: true });
+  }, [pathname, main]);
 }
 
 function Bar() {

@@ -126,13 +126,7 @@ function EnsembleLine({
         {formatCount(row.frames)}
       </Td>
       <Td tall className={WIDE}>
-        {row.held > 0 ? (
-          <Badge tone="held" title={`${plural(row.held, "frame")} held`}>
-            {formatCount(row.held)}
-          </Badge>
-        ) : (
-          <span className="text-ink-3">{ABSENT}</span>
-        )}
+        <HeldCell held={row.held - row.waiting} waiting={row.waiting} />
       </Td>
       <Td tall align="right" className={WIDE}>
         {formatCount(sift?.distinct)}
@@ -158,6 +152,25 @@ function EnsembleLine({
         </Td>
       ) : null}
     </Tr>
+  );
+}
+
+/** Held for a reason of their own; what only waits for an answer is not held, it waits. */
+function HeldCell({ held, waiting }: { held: number; waiting: number }) {
+  if (held === 0 && waiting === 0) return <span className="text-ink-3">{ABSENT}</span>;
+  return (
+    <span className="inline-flex flex-wrap gap-1">
+      {held > 0 ? (
+        <Badge tone="held" title={`${plural(held, "frame")} held`}>
+          {formatCount(held)}
+        </Badge>
+      ) : null}
+      {waiting > 0 ? (
+        <Badge tone="ask" title={`${plural(waiting, "frame waits", "frames wait")} for an answer`}>
+          {formatCount(waiting)} wait{waiting === 1 ? "s" : ""}
+        </Badge>
+      ) : null}
+    </span>
   );
 }
 

@@ -57,7 +57,7 @@ export function SeriesFilters({
       method="get"
       role="search"
       aria-label="Ensembles"
-      className="flex flex-wrap items-center gap-3"
+      className="flex flex-wrap items-center gap-3 print:hidden"
       onSubmit={(event) => {
         event.preventDefault();
         send();

@@ -7,6 +7,7 @@ import { DropOverlay, Dropzone, FileButton, usePageDrop } from "~/components/ui/
 import { Finding } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
 import { linkClass, TextLink } from "~/components/ui/text-link";
+import { showToast } from "~/components/ui/toast";
 import type { Taken } from "~/components/ui/upload-list";
 import { UploadList } from "~/components/ui/upload-row";
 import { useUploads } from "~/components/ui/use-uploads";
@@ -83,7 +84,9 @@ export function SeriesPage({ data }: { data: SeriesPageData }) {
       <div className="mt-6 flex flex-wrap items-end justify-between gap-6">
         {data.total > 0 ? <DepthKey className="w-full max-w-105" /> : null}
         {mayCompute && data.total > 0 ? (
-          <p className="text-xs text-ink-3">Drop files anywhere on this page to start an intake.</p>
+          <p className="text-xs text-ink-3 noscript:hidden print:hidden">
+            Drop files anywhere on this page to start an intake.
+          </p>
         ) : null}
       </div>
       <LeaveGuard underWay={uploads.underWay} mayLeave={mayLeave} />
@@ -104,6 +107,13 @@ function useIntake(data: SeriesPageData) {
   const moving = useRef(false);
   const onTaken = (taken: Taken) => {
     moving.current = alone;
+    if (alone && taken.already) {
+      showToast({
+        tone: "done",
+        badge: "already here",
+        text: `Already here as ${taken.name}: the same bytes make no second ensemble.`,
+      });
+    }
     if (alone) navigate(href("/ensembles/:id/intake", { id: taken.id }));
     else revalidator.revalidate();
   };
@@ -163,6 +173,7 @@ function Ensembles({
           />
         ) : (
           <StatePanel
+            level="h2"
             title="Nothing fits"
             className="mt-6"
             actions={<TextLink to={plain}>Show all</TextLink>}
@@ -198,7 +209,7 @@ function NoEnsembles({ data, onFiles }: { data: SeriesPageData; onFiles: (files:
   ) : null;
   if (!data.mayCompute) {
     return (
-      <StatePanel title="No ensembles yet" className="mt-8" actions={example}>
+      <StatePanel level="h2" title="No ensembles yet" className="mt-8" actions={example}>
         An analyst or owner of the team takes files in; you will see them here.
       </StatePanel>
     );
@@ -206,6 +217,7 @@ function NoEnsembles({ data, onFiles }: { data: SeriesPageData; onFiles: (files:
   return (
     <div className="mt-8 grid gap-8 lg:grid-cols-2">
       <StatePanel
+        level="h2"
         title="No ensembles yet"
         actions={
           <>

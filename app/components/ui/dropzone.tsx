@@ -109,7 +109,7 @@ export function FileButton({
   return (
     <label
       htmlFor={id}
-      className={`relative ${buttonClass({ kind })} has-[:focus-visible]:outline-2 has-[:focus-visible]:outline-offset-2 has-[:focus-visible]:outline-mark`}
+      className={`relative noscript:hidden ${buttonClass({ kind })} has-[:focus-visible]:outline-2 has-[:focus-visible]:outline-offset-2 has-[:focus-visible]:outline-mark`}
     >
       <Upload aria-hidden="true" />
       {children}
@@ -141,7 +141,7 @@ function HiddenInput({ id, onFiles, disabled }: ChooserProps & { id: string }) {
 export function Dropzone({ onFiles, disabled, hint }: ChooserProps & { hint: ReactNode }) {
   const id = useId();
   return (
-    <div className="grid place-content-center justify-items-center gap-1 rounded-md border-[1.5px] border-dashed border-edge px-4 py-6 text-center text-ink-2">
+    <div className="grid place-content-center justify-items-center gap-1 noscript:hidden print:hidden rounded-md border-[1.5px] border-dashed border-edge px-4 py-6 text-center text-ink-2">
       <Upload aria-hidden="true" className="size-4" />
       <p>
         <span className="font-semibold text-ink">Drop files here</span>,{" "}

@@ -1,6 +1,6 @@
 import { and, asc, count, desc, eq, inArray, isNull, or } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
-import { columns, ensembleFiles, ensembles, series } from "../../db/schema.server.ts";
+import { columns, ensembleFiles, ensembles, frames, series } from "../../db/schema.server.ts";
 import type { EnsembleRow } from "../../lib/views.ts";
 import { type Actor, accessTeam, type Grant } from "../auth/access.server.ts";
 import { chooseSift, findSiftsOf } from "../sifts/find-sift.server.ts";
@@ -58,6 +58,23 @@ function filesOfEnsembles(ids: string[]) {
   );
 }
 
+/** Frames that are held for nothing but an open question, by ensemble. */
+async function waitingIn(ids: string[]): Promise<Map<string, number>> {
+  if (ids.length === 0) return new Map();
+  const rows = await db
+    .select({ ensembleId: frames.ensembleId, waiting: count() })
+    .from(frames)
+    .where(
+      and(
+        inArray(frames.ensembleId, ids),
+        eq(frames.state, "held"),
+        eq(frames.holdReason, "waits-for-answer"),
+      ),
+    )
+    .groupBy(frames.ensembleId);
+  return new Map(rows.map((row) => [row.ensembleId, row.waiting]));
+}
+
 /** The table of a team's ensembles, last changed first. */
 export async function listEnsembles(options: {
   actor: Actor;
@@ -82,15 +99,18 @@ export async function listEnsembles(options: {
     .orderBy(desc(ensembles.changedAt), desc(ensembles.id));
   if (rows.length === 0) return [];
   const ids = rows.map((row) => row.id);
-  const [levels, files, sifts] = await Promise.all([
+  const asking = rows.filter((row) => row.openQuestions > 0).map((row) => row.id);
+  const [levels, files, sifts, waiting] = await Promise.all([
     levelsOfEnsembles(ids),
     filesOfEnsembles(ids),
     groupByEnsemble(findSiftsOf(ids)),
+    waitingIn(asking),
   ]);
   return rows.map((row) => {
     const chosen = chooseSift(sifts.get(row.id) ?? []);
     return {
       ...row,
+      waiting: waiting.get(row.id) ?? 0,
       levels: (levels.get(row.id) ?? []).map(({ name, ordinal }) => ({ name, ordinal })),
       fileNames: (files.get(row.id) ?? []).map((file) => file.name),
       sift:
