@@ -129,6 +129,33 @@ export const uploadFieldsSchema = z
   .meta({ id: "UploadFields" });
 export type UploadFields = z.infer<typeof uploadFieldsSchema>;
 
+/** Fields of a further batch beside its files; what is left out is that of the ensemble where the files are alike. */
+export const batchFieldsSchema = z
+  .strictObject({
+    name: z
+      .string()
+      .trim()
+      .min(1)
+      .max(200)
+      .optional()
+      .meta({ description: "What this search or batch is called." }),
+    level: uploadFieldsSchema.shape.level.meta({
+      description: "Default: the level of the ensemble's own energies.",
+    }),
+    energyUnit: uploadFieldsSchema.shape.energyUnit.meta({
+      description:
+        "Default: the unit beside the number, else that of the level where the values lie where its own do.",
+    }),
+    energyFrom: uploadFieldsSchema.shape.energyFrom.meta({
+      description:
+        "Default: the number that the ensemble's own energies come from, where these files have it.",
+    }),
+    energyKind: uploadFieldsSchema.shape.energyKind.meta({ description: "Default: that of the level." }),
+    energyTemperature: uploadFieldsSchema.shape.energyTemperature,
+  })
+  .meta({ id: "BatchFields" });
+export type BatchFields = z.infer<typeof batchFieldsSchema>;
+
 export const intakeMessageSchema = z
   .object({
     code: z.string(),
@@ -216,7 +243,17 @@ export const ensembleSchema = z
     levels: z.array(levelSchema),
     columns: z.array(columnSchema),
     files: z.array(
-      z.object({ name: z.string(), sha256: z.string(), bytes: z.number().int(), frames: z.number().int() }),
+      z.object({
+        name: z.string(),
+        sha256: z.string(),
+        bytes: z.number().int(),
+        frames: z.number().int(),
+        batch: z
+          .number()
+          .int()
+          .positive()
+          .meta({ description: "Which upload or search brought it, from 1." }),
+      }),
     ),
     createdAt: z.string(),
     warnings: warningsSchema.optional(),
@@ -430,6 +467,10 @@ export const siftResultSchema = z
         copies: z.number().nullable(),
         mirrorRmsd: z.number(),
         found: z.number().int(),
+        foundIn: z
+          .array(z.object({ batch: z.number().int().positive(), found: z.number().int() }))
+          .optional()
+          .meta({ description: "found by batch, where the ensemble grew by further ones." }),
         upperBound: z.boolean().optional(),
       }),
     ),

@@ -69,6 +69,7 @@ function toColumn(candidate: EnergyCandidate, name: string, frames: number): New
     name,
     kind: "property",
     energyKind: null,
+    kindStated: false,
     temperature: null,
     unit,
     rule: unit === "°" || unit === "deg" ? "circular" : "linear",

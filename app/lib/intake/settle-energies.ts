@@ -13,6 +13,8 @@ export interface NewColumn {
   name: string;
   kind: "energy" | "property";
   energyKind: EnergyKind | null;
+  /** False where nobody said which kind of energy it is. */
+  kindStated: boolean;
   temperature: number | null;
   unit: string | null;
   rule: string | null;
@@ -62,6 +64,7 @@ export function settleEnergies(
     name: level,
     kind: "energy",
     energyKind: answers.energyKind,
+    kindStated: options.kindStated,
     temperature: answers.energyTemperature,
     unit,
     rule: null,

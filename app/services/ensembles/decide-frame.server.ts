@@ -9,6 +9,7 @@ import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
 import { countFrames } from "./intake-rows.server.ts";
+import { refreshChirality } from "./refresh-chirality.server.ts";
 
 type At = Grant & { ensembleId: string };
 
@@ -57,6 +58,7 @@ async function write(
       changedAt: new Date(),
     })
     .where(eq(ensembles.id, at.ensembleId));
+  await refreshChirality(tx, at.ensembleId);
 }
 
 const conflict = (title: string, detail: string) => new DomainError("conflict", title, detail);

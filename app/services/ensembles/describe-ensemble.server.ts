@@ -14,8 +14,18 @@ export function ensembleUrl(ensembleId: string): string {
   return `${env().APP_ORIGIN}/ensembles/${ensembleId}`;
 }
 
+/**
+ * Questions still open. A level may have any name, so its options are proposals and may be none: a program is told what
+ * to send, where a page shows a field.
+ */
 function open(questions: readonly IntakeQuestion[]): EnsembleAnswer["intake"]["questions"] {
-  return questions.filter((question) => question.answered === undefined);
+  return questions
+    .filter((question) => question.answered === undefined)
+    .map((question) =>
+      question.id === "level"
+        ? { ...question, text: `${question.text} Any name will do: send it as the option.` }
+        : question,
+    );
 }
 
 /** What people hold is said like what the readers hold, with the reason they gave; the first 100 as everywhere. */
@@ -71,15 +81,16 @@ export async function describeEnsemble(teamId: string, ensembleId: string): Prom
     chirality: ensemble.chirality,
     intake,
     levels: toLevels(found).map(({ ordinal: _, ...level }) => level),
-    columns: found.map(({ id, name, kind, unit, count, missing }) => ({
+    columns: found.map(({ id, name, kind, unit, rule, count, missing }) => ({
       id,
       name,
       kind,
       unit,
+      rule: kind === "property" ? (rule ?? "linear") : null,
       count,
       missing,
     })),
-    files: files.map(({ name, sha256, bytes, frames }) => ({ name, sha256, bytes, frames })),
+    files: files.map(({ name, sha256, bytes, frames, batch }) => ({ name, sha256, bytes, frames, batch })),
     createdAt: ensemble.createdAt.toISOString(),
   };
 }

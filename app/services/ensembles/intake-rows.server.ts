@@ -93,24 +93,32 @@ export async function insertColumns(
   }
 }
 
-/** Remarks on single frames, as their state and note say them. */
+/** Frames a statement that each bring a note of their own. */
+const NOTES_AT_ONCE = 500;
+
+/** Remarks on single frames, as their state and note say them; of several on one frame the first is its note. */
 export async function remarkFrames(
   tx: Queryable,
   ensembleId: string,
   messages: readonly IntakeMessage[],
 ): Promise<void> {
-  const byNote = new Map<string, number[]>();
+  const notes = new Map<number, string>();
   for (const { frame, severity, message } of messages) {
-    if (frame === undefined || severity !== "remark") continue;
-    byNote.set(message, [...(byNote.get(message) ?? []), frame]);
+    if (frame === undefined || severity !== "remark" || notes.has(frame)) continue;
+    notes.set(frame, message.slice(0, 1000));
   }
-  for (const [note, numbers] of byNote) {
-    const these = and(eq(frames.ensembleId, ensembleId), inArray(frames.number, numbers));
-    const first = sql`coalesce(${frames.note}, ${note.slice(0, 1000)})`;
+  const all = [...notes];
+  for (let at = 0; at < all.length; at += NOTES_AT_ONCE) {
+    const some = all.slice(at, at + NOTES_AT_ONCE);
+    const cases = some.map(([number, note]) => sql`when ${number} then ${note}`);
+    const own = sql`case ${frames.number} ${sql.join(cases, sql` `)} end`;
+    const numbers = some.map(([number]) => number);
     await tx
       .update(frames)
-      .set({ state: "remarked", readState: "remarked", note: first })
-      .where(and(these, ne(frames.state, "held")));
+      .set({ state: "remarked", readState: "remarked", note: sql`coalesce(${frames.note}, ${own})` })
+      .where(
+        and(eq(frames.ensembleId, ensembleId), inArray(frames.number, numbers), ne(frames.state, "held")),
+      );
   }
 }
 
@@ -154,7 +162,7 @@ export async function countFrames(tx: Queryable, ensembleId: string): Promise<Co
 async function lowestFrame(
   tx: Queryable,
   ensembleId: string,
-  energies: NewColumn | null,
+  energies: Pick<NewColumn, "data"> | null,
 ): Promise<number | null> {
   const { numbers, indices } = await acceptedFrames(ensembleId, tx);
   let best: { index: number; value: number } | null = null;
@@ -172,7 +180,7 @@ export async function chiralityOf(
   ensembleId: string,
   graph: Graph,
   configuration: Configuration,
-  energies: NewColumn | null,
+  energies: Pick<NewColumn, "data"> | null,
 ): Promise<{ chirality: "achiral" | "chiral" | "unsure"; chiralityNote: string }> {
   const lowest = await lowestFrame(tx, ensembleId, energies);
   const positions =

@@ -9,6 +9,7 @@ import {
   intakeMessages,
   questions,
 } from "../../db/schema.server.ts";
+import { DomainError } from "../../lib/errors.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
@@ -16,6 +17,7 @@ import { acceptedSha } from "./accepted-frames.server.ts";
 import { completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
 import { countFrames, levelsInUse } from "./intake-rows.server.ts";
 import { readStored, takeBack } from "./read-stored.server.ts";
+import { refreshChirality } from "./refresh-chirality.server.ts";
 import { siftAfterIntake } from "./sift-after-intake.server.ts";
 
 type At = Grant & { ensembleId: string };
@@ -55,6 +57,11 @@ async function moveNew(tx: Transaction, from: string, to: string): Promise<void>
   }
 }
 
+function nameTaken(name: string): DomainError {
+  const message = `The ensemble has a column "${name}" that did not come with its files. Give the level another name, or replace that column by a table with these values.`;
+  return new DomainError("conflict", "The name is taken", message, { faults: [{ field: "level", message }] });
+}
+
 /** A level that keeps its name keeps its id and its place among the levels: recipes and hues go on meaning it. */
 async function replaceColumns(tx: Transaction, from: string, to: string): Promise<void> {
   const old = await tx
@@ -66,6 +73,9 @@ async function replaceColumns(tx: Transaction, from: string, to: string): Promis
     .select({ id: columns.id, name: columns.name, ordinal: columns.ordinal })
     .from(columns)
     .where(eq(columns.ensembleId, from));
+  const others = await tx.select({ name: columns.name }).from(columns).where(eq(columns.ensembleId, to));
+  const taken = others.find((other) => made.some(({ name }) => name === other.name));
+  if (taken) throw nameTaken(taken.name);
   for (const { id, name, ordinal } of made) {
     const same = old.find((column) => column.name === name);
     await tx
@@ -148,6 +158,7 @@ async function adopt(tx: Transaction, at: At, readId: string, questionCount: num
       changedAt: new Date(),
     })
     .where(eq(ensembles.id, old.id));
+  await refreshChirality(tx, old.id);
   await tx.delete(ensembles).where(eq(ensembles.id, readId));
   await writeEntry(tx, at, at, {
     type: "reread",

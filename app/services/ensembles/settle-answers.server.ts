@@ -14,6 +14,7 @@ import {
   type EnergyDecision,
   NO_ENERGY,
 } from "../../lib/intake/decide-energies.ts";
+import { MessageList } from "../../lib/intake/message-list.ts";
 import type { IntakeQuestion } from "../../lib/intake/report.ts";
 import { type SettledEnergies, settleEnergies } from "../../lib/intake/settle-energies.ts";
 import type { Graph } from "../../lib/structure.ts";
@@ -130,7 +131,9 @@ async function writeSettled(
   await tx
     .delete(intakeMessages)
     .where(and(eq(intakeMessages.ensembleId, id), eq(intakeMessages.severity, "question")));
-  await insertMessages(tx, id, settled.messages);
+  const list = new MessageList();
+  list.addAll(settled.messages);
+  await insertMessages(tx, id, list.messages());
   const energies = settled.columns.find((column) => column.kind === "energy") ?? null;
   const { configuration } = ensemble.identity as { configuration: Configuration };
   const chirality = await chiralityOf(tx, id, graph, configuration, energies);
