@@ -231,7 +231,7 @@ describe("JSON", () => {
     const parsed: unknown = JSON.parse([...writeJson(set)].join(""));
     expect(parsed).toMatchObject({
       schema: "lowlying-distinct-set",
-      schemaVersion: 1,
+      schemaVersion: 2,
       caution: CAUTION,
       constants: "CODATA 2022",
       units: { energy: "kcal/mol", relativeEnergy: "kcal/mol", population: "fraction" },
@@ -243,6 +243,17 @@ describe("JSON", () => {
         { ...conformer(1), source: "0a".repeat(32) },
         { ...conformer(12), upperBound: true, source: "0b".repeat(32) },
       ],
+    });
+  });
+
+  test("gives energies in kcal/mol, and the number of the source beside them in its own unit", () => {
+    const set = setOf([conformer(1, { energy: -2 })], {
+      level: { name: "G", unit: "kJ/mol", energyKind: "free" },
+    });
+    expect(JSON.parse([...writeJson(set)].join(""))).toMatchObject({
+      units: { energy: "kcal/mol", sourceEnergy: "kJ/mol" },
+      level: { unit: "kJ/mol" },
+      conformers: [{ energy: -2 / 4.184, sourceEnergy: -2 }],
     });
   });
 

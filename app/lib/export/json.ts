@@ -1,7 +1,8 @@
-import { CONSTANTS_YEAR } from "../units.ts";
+import { CONSTANTS_YEAR, kcalPer } from "../units.ts";
 import { type ExportSet, sourceOf } from "./export-set.ts";
 
-export const EXPORT_SCHEMA_VERSION = 1;
+/** 2: `energy` in kcal/mol, the source's own number beside it as `sourceEnergy`. */
+export const EXPORT_SCHEMA_VERSION = 2;
 
 /** Goes with every list of populations. */
 export const CAUTION =
@@ -10,7 +11,7 @@ export const CAUTION =
 
 /**
  * The distinct set as JSON, in pieces: recipe, units, checksums of the sources and constants first, then one
- * conformer a line. Lengths Å, energies kcal/mol but for `energy`, which is in the unit of the level.
+ * conformer a line. Lengths Å, energies kcal/mol; `sourceEnergy` is the number as the source has it, in its unit.
  *
  * @example JSON.parse([...writeJson(set)].join("")).conformers.length
  */
@@ -21,7 +22,8 @@ export function* writeJson(set: ExportSet): Generator<string> {
     caution: CAUTION,
     constants: CONSTANTS_YEAR,
     units: {
-      energy: set.level?.unit ?? null,
+      energy: "kcal/mol",
+      sourceEnergy: set.level?.unit ?? null,
       relativeEnergy: "kcal/mol",
       mirrorRmsd: "Å",
       population: "fraction",
@@ -36,6 +38,7 @@ export function* writeJson(set: ExportSet): Generator<string> {
     temperature: set.temperature,
     weights: set.weights,
   };
+  const perUnit = set.level && kcalPer(set.level.unit);
   yield `${JSON.stringify(head, null, 2).slice(0, -2)},\n  "conformers": [`;
   for (const [k, conformer] of set.conformers.entries()) {
     const {
@@ -55,7 +58,8 @@ export function* writeJson(set: ExportSet): Generator<string> {
     const line = {
       frame,
       label,
-      energy,
+      energy: energy === null || perUnit === null ? null : energy * perUnit,
+      sourceEnergy: energy,
       relativeEnergy,
       population,
       degeneracy,
