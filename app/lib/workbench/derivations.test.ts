@@ -570,6 +570,7 @@ describe("stations of the course line", () => {
       "intake: 397 of 400, 3 held, care",
       "distinct-set: 4 of 7, done",
       `populations: 298.15${NBSP}K, done`,
+      "levels: no energies, todo",
       "hand-over: CSV, XYZ, JSON, done",
       "logbook: who did what, done",
     ]);

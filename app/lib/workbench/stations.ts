@@ -34,9 +34,18 @@ export function stations(ensemble: EnsembleView, sift: SiftView | null, temperat
         ? after(withUnit(formatTemperature(temperatureK), "K"))
         : ({ figure: "no energies", state: "todo" } as const)),
     },
+    { path: "levels", name: "Levels", ...levelsStation(ensemble) },
     { path: "hand-over", name: "Hand-over", ...after("CSV, XYZ, JSON") },
     { path: "logbook", name: "Logbook", figure: "who did what", state: "done" },
   ];
+}
+
+function levelsStation(ensemble: EnsembleView): Pick<StationView, "figure" | "state"> {
+  const { length } = ensemble.levels;
+  return {
+    figure: length === 0 ? "no energies" : plural(length, "level"),
+    state: length > 1 ? "done" : "todo",
+  };
 }
 
 function intakeStation(ensemble: EnsembleView): Pick<StationView, "figure" | "state"> {

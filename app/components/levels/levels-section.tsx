@@ -1,0 +1,217 @@
+import { useDeferredValue, useMemo } from "react";
+import { href, useLocation } from "react-router";
+import type { Choose } from "~/components/charts/plot";
+import { ButtonLink } from "~/components/ui/button";
+import { Finding, SectionHead } from "~/components/ui/finding";
+import { StatePanel } from "~/components/ui/state-panel";
+import { TextLink } from "~/components/ui/text-link";
+import { useWorkbench } from "~/components/workbench/workbench-context";
+import { useLevelTask } from "~/hooks/use-level-task";
+import { formatCount, formatTemperature, plural } from "~/lib/format";
+import type { LevelEnergiesView } from "~/lib/levels/level-energies";
+import { comparisonStory } from "~/lib/levels/story";
+import { AgreementTable } from "./agreement-table";
+import { ComparedTable } from "./compared-table";
+import { ErrorAgainstEnergy } from "./error-against-energy";
+import { LevelAgainstLevel } from "./level-against-level";
+import { LevelMatrix } from "./level-matrix";
+import { LevelsSettings } from "./levels-settings";
+import { pairPoints } from "./pair-points";
+import { PopulationAgainstPopulation } from "./population-against-population";
+import { SlopeChart } from "./slope-chart";
+import { type Comparison, type LevelData, useComparison, useLevelData, useMembers } from "./use-comparison";
+import { WindowChart } from "./window-chart";
+import { WindowTable } from "./window-table";
+
+/** Seed of every figure by chance on this page: with the same input the same digits. */
+export const PAGE_SEED = 412;
+/** Beyond this many conformers a bootstrap would keep a phone busy for minutes. */
+const MOST_RESAMPLED = 5000;
+
+/** Levels: can the cheap one be trusted, and how wide must its window be? */
+export function LevelsSection({ energies }: { energies: readonly LevelEnergiesView[] }) {
+  const levels = useLevelData(energies);
+  return (
+    <section aria-labelledby="section-title">
+      <SectionHead
+        id="section-title"
+        title="Levels"
+        aside={<TextLink to={`${href("/methods")}#levels`}>How this is computed</TextLink>}
+      />
+      {levels.length < 2 ? <TooFew levels={levels} /> : <Compared levels={levels} />}
+    </section>
+  );
+}
+
+/** One level or none: what the section needs, and the way to it. */
+function TooFew({ levels }: { levels: readonly LevelData[] }) {
+  const { ensemble } = useWorkbench();
+  const { search } = useLocation();
+  const only = levels[0];
+  return (
+    <>
+      <Finding>
+        {only
+          ? `Only ${only.name} is here. A second level on the same structures shows how far it can be trusted, and how wide a window to carry.`
+          : "These frames carry no energies, so there are no levels to compare."}
+      </Finding>
+      <StatePanel
+        title={only ? "A second level is needed" : "Two levels are needed"}
+        className="mt-6"
+        actions={
+          ensemble.mayCompute ? (
+            <ButtonLink
+              kind="primary"
+              to={{ pathname: `${href("/ensembles/:id", { id: ensemble.id })}/columns`, search }}
+            >
+              Add a level
+            </ButtonLink>
+          ) : undefined
+        }
+      >
+        <p>
+          Bring a table of energies (a column for the frame, one for the energy with its unit) or a structure
+          file of the same frames in any order.
+          {only ? " A plan can already be drafted with an error typed in for the next level." : ""}
+        </p>
+      </StatePanel>
+    </>
+  );
+}
+
+/** The two levels that the address names; the first and the last that arrived where it names none. */
+export function chosenLevels(
+  levels: readonly LevelData[],
+  asked: { level: string | null; reference: string | null },
+): { level: LevelData | null; reference: LevelData | null } {
+  const byId = (id: string | null) => levels.find((one) => one.id === id) ?? null;
+  const reference = byId(asked.reference) ?? levels.filter((one) => one.id !== asked.level).at(-1) ?? null;
+  const level = byId(asked.level) ?? levels.find((one) => one !== reference) ?? null;
+  if (level !== null && level === reference)
+    return { level, reference: levels.find((one) => one !== level) ?? null };
+  return { level, reference };
+}
+
+function Compared({ levels }: { levels: readonly LevelData[] }) {
+  const { state, temperatureK } = useWorkbench();
+  const { level, reference } = chosenLevels(levels, state.compare);
+  const { members, among, weightsReason } = useMembers(reference);
+  const found = useComparison(level, reference, members);
+  if (!level || !reference) return null;
+  if (found === null) {
+    return (
+      <>
+        <Finding>
+          No {among === "conformers" ? "conformer" : "frame"} has an energy at both {level.name} and{" "}
+          {reference.name}.
+        </Finding>
+        <LevelsSettings levels={levels} level={level} reference={reference} found={null} />
+      </>
+    );
+  }
+  const story = comparisonStory({
+    level: level.name,
+    reference: reference.name,
+    nameOf: (place) => found.paired.members[place]?.name ?? "",
+    comparison: found.comparison,
+    meeting: found.meeting,
+    window: found.window,
+  });
+  return (
+    <>
+      <Finding more={[story.second, leftWords(found, among)].filter(Boolean).join(" ")}>{story.text}</Finding>
+      <LevelsSettings levels={levels} level={level} reference={reference} found={found} />
+      <p className="mt-3 max-w-[46rem] text-xs text-ink-3">
+        {weightsReason} {temperatureWords([level, reference], temperatureK)}
+      </p>
+      <Figures found={found} />
+      {levels.length > 2 ? <LevelMatrix levels={levels} members={members} /> : null}
+    </>
+  );
+}
+
+/** Who could not be compared, counted where the number stands. */
+function leftWords({ paired, level, reference }: Comparison, among: "conformers" | "accepted"): string {
+  const what = among === "conformers" ? "conformer" : "frame";
+  if (paired.left.length === 0) return `Every ${what} has both energies.`;
+  const names = paired.left.slice(0, 6).map((member) => member.name);
+  return (
+    `${plural(paired.left.length, what)} left out: ${formatCount(paired.missingLevel)} without an energy at ${level.name}, ` +
+    `${formatCount(paired.missingReference)} at ${reference.name} (${names.join(", ")}${paired.left.length > 6 ? ", …" : ""}).`
+  );
+}
+
+/** Free energies belong to one temperature. */
+function temperatureWords(levels: readonly LevelData[], temperatureK: number): string {
+  const off = levels.filter(
+    (level) => level.temperature !== null && Math.abs(level.temperature - temperatureK) > 0.005,
+  );
+  if (off.length === 0) return "";
+  return off
+    .map(
+      (level) =>
+        `${level.name} was computed for ${formatTemperature(level.temperature)} K and does not hold at another temperature.`,
+    )
+    .join(" ");
+}
+
+function Figures({ found: live }: { found: Comparison }) {
+  const { selected, select, state, temperatureK } = useWorkbench();
+  // The sentence above follows the slider at once; the figures follow when there is time.
+  const found = useDeferredValue(live);
+  const points = useMemo(() => pairPoints(found), [found]);
+  const chosen = useMemo(() => new Set(selected), [selected]);
+  const order = useMemo(
+    () => [...points].sort((a, b) => a.reference - b.reference).map((point) => point.frame),
+    [points],
+  );
+  const choose: Choose = (frame, keys) =>
+    select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order);
+  const { paired, comparison, zeroPlace } = found;
+  const sigma = state.compare.sigmaKcal;
+  const base = useMemo(
+    () => ({ level: paired.level, reference: paired.reference, weights: paired.weights, temperatureK }),
+    [paired, temperatureK],
+  );
+  const intervals = useLevelTask(
+    "intervals",
+    useMemo(
+      () =>
+        comparison.n >= 2 && comparison.n <= MOST_RESAMPLED
+          ? {
+              comparison: {
+                ...base,
+                align: comparison.align,
+                commonPlace: state.compare.zeroFrame === null ? undefined : (zeroPlace ?? undefined),
+              },
+              seed: PAGE_SEED,
+            }
+          : null,
+      [base, comparison.n, comparison.align, state.compare.zeroFrame, zeroPlace],
+    ),
+  );
+  const band = useLevelTask(
+    "band",
+    useMemo(() => (sigma > 0 ? { ...base, error: { sigma }, seed: PAGE_SEED } : null), [base, sigma]),
+  );
+  const shared = { found, points, selected: chosen, onChoose: choose };
+  return (
+    <>
+      <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
+        <LevelAgainstLevel {...shared} />
+        <WindowChart found={found} band={band} />
+        <AgreementTable found={found} intervals={intervals} temperatureK={temperatureK} />
+        <WindowTable found={found} intervals={intervals} band={band} />
+      </div>
+      <ComparedTable {...shared} />
+      <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
+        <PopulationAgainstPopulation {...shared} />
+        <ErrorAgainstEnergy {...shared} />
+        <SlopeChart {...shared} />
+      </div>
+      <p className="mt-6 text-xs text-ink-3">
+        <TextLink to={`${href("/methods")}#levels`}>How this is computed</TextLink>
+      </p>
+    </>
+  );
+}

@@ -1,0 +1,105 @@
+import { BlockHead } from "~/components/ui/finding";
+import { Note } from "~/components/ui/note";
+import { Skeleton } from "~/components/ui/skeleton";
+import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { useWorkbench } from "~/components/workbench/workbench-context";
+import { ABSENT, formatCount, formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
+import { type ComparisonIntervals, windowInterval } from "~/lib/levels/intervals";
+import { keptWithin, narrowestWindow } from "~/lib/levels/window";
+import { bandWithin, type WindowBand } from "~/lib/levels/window-band";
+import type { Comparison } from "./use-comparison";
+
+/** Window and conformers for 90, 95, 99 % and the share that is asked for, with what is uncertain about them. */
+export function WindowTable({
+  found,
+  intervals,
+  band,
+}: {
+  found: Comparison;
+  intervals: ComparisonIntervals | null;
+  band: WindowBand | null;
+}) {
+  const { state } = useWorkbench();
+  const { comparison, steps, window, paired, meeting, level, reference } = found;
+  const shares = [...new Set([...comparison.window.map((w) => w.share), window.share, 1])].sort(
+    (a, b) => a - b,
+  );
+  const rows = shares.map((share) => ({ ...narrowestWindow(steps, share), share }));
+  const alone = comparison.n < 2;
+  return (
+    <div className="min-w-0">
+      <BlockHead title="How wide to carry" />
+      <Table aria-label="Window and conformers for a share of the reference population">
+        <thead>
+          <tr>
+            <Th>Keep</Th>
+            <Th align="right" unit="kcal/mol">
+              Window
+            </Th>
+            <Th align="right" unit="bootstrap" className="max-sm:hidden">
+              95 % interval
+            </Th>
+            <Th align="right">Conformers</Th>
+            <Th align="right" unit="of the draws">
+              Lowest kept
+            </Th>
+          </tr>
+        </thead>
+        <tbody>
+          {rows.map((row) => {
+            const interval = intervals ? windowInterval(intervals, row.share) : null;
+            const within = band ? bandWithin(band, row.kcal) : null;
+            return (
+              <Tr key={row.share} selected={row.share === window.share} data-share={row.share}>
+                <Td>
+                  {row.share === 1
+                    ? "all"
+                    : formatPercent(row.share, row.share * 100 === Math.round(row.share * 100) ? 0 : 1)}
+                </Td>
+                <Td align="right">{formatEnergy(row.kcal)}</Td>
+                <Td align="right" className="text-ink-2 max-sm:hidden">
+                  {interval ? (
+                    `${formatEnergy(interval.low)} to ${formatEnergy(interval.high)}`
+                  ) : intervals === null && !alone && row.share < 1 ? (
+                    <Skeleton className="ml-auto h-3 w-16" />
+                  ) : (
+                    ABSENT
+                  )}
+                </Td>
+                <Td align="right">{formatCount(row.count)}</Td>
+                <Td align="right" className="text-ink-2">
+                  {within ? formatPercent(within.lowestKept, 1) : ABSENT}
+                </Td>
+              </Tr>
+            );
+          })}
+        </tbody>
+      </Table>
+      <p className="mt-2 max-w-read text-xs text-ink-3">
+        {lowestWords()} {bandWords()}
+      </p>
+      <Note className="mt-4">
+        Best case: a window cannot bring back what the sampler never found, and {reference.name} is taken as
+        it is.
+      </Note>
+    </div>
+  );
+
+  function lowestWords(): string {
+    const name = paired.members[meeting.referenceLowest]?.name ?? "";
+    const kept = keptWithin(steps, window.kcal);
+    const is = meeting.aboveAtLevel <= window.kcal ? "is within" : "lies outside";
+    return `The lowest at ${reference.name}, ${name}, ${is} ${withUnit(formatEnergy(window.kcal), "kcal/mol")} of ${level.name}, which keeps ${formatPercent(kept.kept, 1)} in ${plural(kept.count, "conformer")}.`;
+  }
+
+  function bandWords(): string {
+    if (state.compare.sigmaKcal === 0) return `The energies of ${reference.name} are taken as exact.`;
+    const sigma = withUnit(formatEnergy(state.compare.sigmaKcal), "kcal/mol");
+    if (!band) return `With an error of ${sigma} on ${reference.name}, ranges are being drawn.`;
+    const at = bandWithin(band, window.kcal);
+    const range = at
+      ? ` that window keeps ${formatPercent(at.low)} to ${formatPercent(at.high)} of the true population`
+      : "";
+    return `With an independent error of ${sigma} on each energy of ${reference.name},${range} (95 % of ${formatCount(band.draws)} draws, ${band.generator}, seed ${band.seed}).`;
+  }
+}
