@@ -112,6 +112,7 @@ export function ExampleFigures({ live }: { live: LiveExample }) {
       <div className="grid items-end gap-x-12 gap-y-4 lg:grid-cols-[minmax(0,2fr)_minmax(0,3fr)]">
         <SliderField
           label="Temperature"
+          className="noscript:hidden print:hidden"
           value={temperatureK}
           min={low}
           max={high}
@@ -163,7 +164,10 @@ function ExampleFacts({ live }: { live: LiveExample }) {
       <span>{plural(ensemble.frames, "frame")}</span>
       {ensemble.held > 0 ? <span>{ensemble.held} held</span> : null}
       {level ? <LevelName name={level.name} ordinal={level.ordinal} /> : null}
-      <span>{withUnit(formatTemperature(live.temperatureK), "K")}, computed in this browser</span>
+      <span>
+        {withUnit(formatTemperature(live.temperatureK), "K")}
+        <span className="noscript:hidden">, computed in this browser</span>
+      </span>
     </p>
   );
 }

@@ -29,7 +29,9 @@ function WithExample({ data, example }: { data: HomeData; example: ExampleView }
   return (
     <>
       <Hero data={data} example={example}>
-        <ExampleView3D live={live} />
+        <div className="noscript:hidden">
+          <ExampleView3D live={live} />
+        </div>
       </Hero>
       <ExampleFigures live={live} />
     </>

@@ -19,8 +19,10 @@ export interface View {
 }
 
 /** Scene, stage and camera of a view, kept steady while conformers, populations and the size of the box change. */
-export function useView(input: SceneInput & { anchor: ViewConformer["positions"] | null }): View {
-  const { elements, bonds, alignOn, hydrogens, mode, anchor } = input;
+export function useView(input: SceneInput & { anchor?: ViewConformer["positions"] | null }): View {
+  const { elements, bonds, alignOn, hydrogens, mode } = input;
+  const [first] = input.conformers;
+  const anchor = input.anchor === undefined ? (first?.positions ?? null) : input.anchor;
   const conformers = anchor === null ? NOTHING : input.conformers;
   const box = useRef<HTMLDivElement>(null);
   const [size, setSize] = useState(ASSUMED);

@@ -22,9 +22,9 @@ export interface ViewerProps {
   conformers: readonly ViewConformer[];
   /**
    * Coordinates over which everything lies and from which the view opens: the same ones at every visit. Null where they
-   * are not here yet: nothing is drawn before.
+   * are not here yet: nothing is drawn before. Left out, the first conformer that comes.
    */
-  anchor: ViewConformer["positions"] | null;
+  anchor?: ViewConformer["positions"] | null;
   /** Atoms from 0; null: the heavy atoms. */
   alignOn: readonly number[] | null;
   /** Atoms from 0, up to four. */

@@ -133,7 +133,10 @@ function Files({ files }: { files: readonly ExportFacts[] | null }) {
                 </Td>
                 <Td className="max-xl:hidden">
                   {facts ? (
-                    <span className="inline-flex items-center gap-3" title={facts.sha256}>
+                    <span
+                      className="grid grid-cols-[9rem_auto] items-center justify-start"
+                      title={facts.sha256}
+                    >
                       {formatChecksum(facts.sha256)}
                       <CopyButton as="link" text={facts.sha256}>
                         Copy
@@ -142,7 +145,11 @@ function Files({ files }: { files: readonly ExportFacts[] | null }) {
                   ) : null}
                 </Td>
                 <Td align="right">
-                  <a className={buttonClass({ size: "sm" })} href={address[format] + query} download>
+                  <a
+                    className={`w-24 ${buttonClass({ size: "sm" })}`}
+                    href={address[format] + query}
+                    download
+                  >
                     <Download aria-hidden="true" />
                     {format.toUpperCase()}
                   </a>

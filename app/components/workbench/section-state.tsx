@@ -76,6 +76,9 @@ function Running({ sift }: { sift: SiftView }) {
             : `Comparing ${plural(ensemble.accepted, "frame")}, ${formatPercent(sift.progress)} done.`}
         </p>
         <ProgressBar share={sift.progress} label="Sift" />
+        <p className="mt-2 hidden text-xs text-ink-3 noscript:block">
+          Load the page again to see how far it is.
+        </p>
       </div>
       <Skeleton className="h-16 w-full" />
       <div className="grid gap-6 xl:grid-cols-2">

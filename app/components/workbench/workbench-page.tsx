@@ -97,7 +97,12 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
             WITHOUT_VIEW.includes(section) ? "max-lg:hidden" : ""
           } ${asks ? "max-lg:order-2 max-lg:mt-9" : ""}`}
         >
-          <ViewPanel held={held} />
+          <div className="noscript:hidden">
+            <ViewPanel held={held} />
+          </div>
+          <p className="hidden max-w-read text-ink-3 noscript:block">
+            The 3D view needs script. What it measures and what is drawn beside it stands in the tables.
+          </p>
           {section === "intake" ? <FilePanel /> : null}
         </aside>
         <div className="min-w-0">{children}</div>
