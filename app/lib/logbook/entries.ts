@@ -71,6 +71,17 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
     }),
   }),
   z.object({
+    type: z.literal("batch"),
+    data: z.object({
+      /** From 1; the first upload is 1. */
+      batch: z.number(),
+      name: z.string().nullable(),
+      files: z.array(z.object({ name: z.string(), sha256: z.string(), bytes: z.number() })),
+      answers,
+      added: z.object(counts),
+    }),
+  }),
+  z.object({
     type: z.literal("reread"),
     data: z.object({ before: answers, after: answers, questions: z.number(), ...counts }),
   }),
@@ -180,6 +191,13 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
   }),
   z.object({ type: z.literal("deleted"), data: z.object({ name: z.string() }) }),
   z.object({ type: z.literal("restored"), data: z.object({ name: z.string() }) }),
+  z.object({ type: z.literal("outside-added"), data: z.object({ name: z.string(), file: z.string() }) }),
+  z.object({ type: z.literal("outside-removed"), data: z.object({ name: z.string() }) }),
+  z.object({ type: z.literal("outside-restored"), data: z.object({ name: z.string() }) }),
+  z.object({
+    type: z.literal("pair-matrix"),
+    data: z.object({ conformers: z.number(), atoms: z.string() }),
+  }),
 ]);
 
 export type LogbookEntry = z.infer<typeof logbookEntrySchema>;
@@ -271,6 +289,11 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       const open = entry.data.questions > 0 ? `; ${plural(entry.data.questions, "question")} open` : "";
       return { text: `Read ${names}`, detail: countWords(entry.data) + open };
     }
+    case "batch":
+      return {
+        text: `Added ${entry.data.name ?? `batch ${entry.data.batch}`}: ${countWords(entry.data.added)}`,
+        detail: `${entry.data.files.map((file) => file.name).join(", ")}; ${answerWords(entry.data.answers)}`,
+      };
     case "reread":
       return {
         text: `Read the files again with other answers: ${answerWords(entry.data.after)}`,
@@ -342,6 +365,17 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: `Moved to the series ${entry.data.after}`, detail: `before: ${entry.data.before}` };
     case "deleted":
       return { text: `Deleted ${entry.data.name}`, detail: null };
+    case "outside-added":
+      return { text: `Laid the outside structure ${entry.data.name} beside it`, detail: entry.data.file };
+    case "outside-removed":
+      return { text: `Took the outside structure ${entry.data.name} away`, detail: null };
+    case "outside-restored":
+      return { text: `Brought the outside structure ${entry.data.name} back`, detail: null };
+    case "pair-matrix":
+      return {
+        text: `Asked for the distances of all pairs of ${plural(entry.data.conformers, "frame")}`,
+        detail: entry.data.atoms,
+      };
     case "restored":
       return { text: `Brought ${entry.data.name} back`, detail: null };
   }
