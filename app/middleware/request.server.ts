@@ -35,6 +35,8 @@ export const requestMiddleware: MiddlewareFunction<Response> = async ({ request,
   response.headers.set("x-request-id", requestId);
   // What is shown depends on who asks, down to the error pages: nothing of it is kept on the way.
   if (!response.headers.has("cache-control")) response.headers.set("cache-control", "no-store");
+  // Links are for those who were given them.
+  if (/^\/+e\//i.test(url.pathname)) response.headers.set("x-robots-tag", "noindex");
   if (response.status === 503 && !response.headers.has("retry-after"))
     response.headers.set("retry-after", "5");
 

@@ -67,12 +67,16 @@ describe("the log", () => {
     ["/reset-password/aVeryLongSecret", "/reset-password/***"],
     ["/reset-password/aVeryLongSecret.data", "/reset-password/***"],
     ["/e/secret/files/x.csv", "/e/***/files/x.csv"],
-    ["/invitation/secret", "/invitations/***"],
+    ["/invitation/secret", "/invitation/***"],
     ["//reset-password/secret", "//reset-password/***"],
     ["/RESET-PASSWORD/secret", "/RESET-PASSWORD/***"],
     ["/teams/abc?search=compound", "/teams/abc"],
     ["/ensembles/abc/populations", "/ensembles/abc/populations"],
     ["/reset-password", "/reset-password"],
+    ["/%65/secret/positions", "/e/***/positions"],
+    ["/E/secret.data", "/E/***"],
+    ["/nowhere/abcdefghijklmnopqrstuvwxyz234567", "/nowhere/***"],
+    ["/%E0%A4%A", "/%E0%A4%A"],
   ])("shows %s as %s", (path, shown) => {
     expect(loggablePath(path)).toBe(shown);
   });

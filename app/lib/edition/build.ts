@@ -55,8 +55,8 @@ export function buildContent(source: EditionSource): EditionContent {
     level: source.level,
     recipe,
     kept: keptOf(source),
-    dropped: result.dropped.map((frame) => ({ ...frame })),
-    held: result.held,
+    dropped: droppedOf(source),
+    held: result.held.map(({ frame, reason }) => ({ frame, reason })),
     outsideWindow: result.outsideWindow,
     withoutEnergy: result.withoutEnergy,
     pairsExamined: result.pairsExamined,
@@ -73,11 +73,28 @@ export function buildContent(source: EditionSource): EditionContent {
 
 function keptOf({ result, labels, energies, positions, ensemble }: EditionSource): EditionContent["kept"] {
   const length = 3 * ensemble.atoms;
-  return result.kept.map(({ upperBound, ...kept }, row) => ({
-    ...kept,
+  return result.kept.map((kept, row) => ({
+    frame: kept.frame,
+    relativeEnergy: kept.relativeEnergy,
+    degeneracy: kept.degeneracy,
+    symmetryNumber: kept.symmetryNumber,
+    copies: kept.copies,
+    mirrorRmsd: kept.mirrorRmsd,
+    found: kept.found,
     label: labels[row] ?? null,
     energy: energies[row] ?? null,
     extent: shapeExtent(ensemble.elements, positions.subarray(row * length, (row + 1) * length)),
+    ...(kept.upperBound === undefined ? {} : { upperBound: kept.upperBound }),
+  }));
+}
+
+function droppedOf({ result }: EditionSource): EditionContent["dropped"] {
+  return result.dropped.map(({ frame, repeats, rmsd, energyDifference, mirror, upperBound }) => ({
+    frame,
+    repeats,
+    rmsd,
+    energyDifference,
+    ...(mirror === undefined ? {} : { mirror }),
     ...(upperBound === undefined ? {} : { upperBound }),
   }));
 }

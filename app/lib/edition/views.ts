@@ -97,8 +97,8 @@ export interface EditionView {
   extents: number[];
   /** The most populated ones, with coordinates. */
   shapes: EditionShape[];
-  /** Conformers whose coordinates can be fetched for the 3D view. */
-  viewable: number;
+  /** Rows whose coordinates can be fetched for the 3D view, in the order in which they lie there. */
+  viewable: number[];
   files: EditionFile[];
   sources: { position: number; name: string; sha256: string; bytes: number }[];
   changed: string[];

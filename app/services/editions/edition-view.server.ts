@@ -83,7 +83,7 @@ export async function toEditionView(
     conformers: content.kept.length,
     extents: content.kept.slice(0, MOST_ROWS).map(({ extent }) => extent),
     shapes: shapesOf(edition, positions),
-    viewable: positions.length / (3 * atoms),
+    viewable: shownRows(content, positions.length / (3 * atoms)),
     files: edition.files,
     sources: options.sources
       ? content.inputs.files.map(({ name: file, sha256, bytes }, position) => ({

@@ -1,0 +1,84 @@
+import { linkClass } from "~/components/ui/text-link";
+import { FILE_WORDS } from "~/lib/edition/edition-files";
+import type { EditionView } from "~/lib/edition/views";
+import { formatBytes, formatChecksum } from "~/lib/format";
+import type { EditionAddresses } from "./addresses";
+import { EditionHead } from "./edition-head";
+
+/** Files of an edition with their checksums, then the originals where they go along. */
+export function EditionDownloads({
+  edition,
+  addresses,
+}: {
+  edition: EditionView;
+  addresses: EditionAddresses;
+}) {
+  const packed = ["bundle.zip", "conformers.zip"];
+  return (
+    <section aria-labelledby="edition-files">
+      <EditionHead id="edition-files">Files of this edition</EditionHead>
+      <ul className="mt-3 border-t border-rule">
+        {edition.files.map(({ name, bytes, sha256 }) => (
+          <Line key={name} name={name} to={addresses.file(name)} bytes={bytes} sha256={sha256} />
+        ))}
+        {packed.map((name) => (
+          <Line key={name} name={name} to={addresses.file(name)} bytes={null} sha256={null} />
+        ))}
+      </ul>
+      {edition.sources.length > 0 ? (
+        <>
+          <h3 className="mt-5 text-sm font-semibold">Source files</h3>
+          <ul className="mt-2 border-t border-rule">
+            {edition.sources.map((file) => (
+              <li
+                key={file.position}
+                className="keep figures grid grid-cols-[minmax(0,1fr)_auto] gap-x-4 border-b border-rule py-2"
+              >
+                <a className={`break-all ${linkClass}`} href={addresses.source(file.position)} download>
+                  {file.name}
+                </a>
+                <span className="text-ink-2">{formatBytes(file.bytes)}</span>
+                <span className="col-span-2 text-xs break-all text-ink-3">SHA-256 {file.sha256}</span>
+              </li>
+            ))}
+          </ul>
+        </>
+      ) : null}
+      <p className="figures mt-2 text-xs text-ink-3">
+        {edition.sources.length === 0 ? "Source files are not part of this link. " : ""}
+        Edition checksum: SHA-256{" "}
+        <span title={edition.contentSha256}>{formatChecksum(edition.contentSha256)}</span>. Computed with
+        Lowlying {edition.version}; the same recipe gives the same digits.
+      </p>
+    </section>
+  );
+}
+
+function Line({
+  name,
+  to,
+  bytes,
+  sha256,
+}: {
+  name: string;
+  to: string;
+  bytes: number | null;
+  sha256: string | null;
+}) {
+  const words = FILE_WORDS[name] ?? { title: name, format: "" };
+  return (
+    <li className="keep figures grid grid-cols-[minmax(0,1fr)_4rem_5rem] items-baseline gap-x-4 border-b border-rule py-2">
+      <span className="min-w-0">
+        <a className={linkClass} href={to} download aria-label={`${words.title}, ${name}`}>
+          {words.title}
+        </a>
+        <span className="block text-xs break-all text-ink-3">
+          {name}
+          {sha256 === null ? "" : `, SHA-256 ${sha256.slice(0, 8)} …`}
+        </span>
+      </span>
+      <span className="text-ink-2">{words.format}</span>
+      <span className="text-right text-ink-2">{bytes === null ? "" : formatBytes(bytes)}</span>
+    </li>
+  );
+}

@@ -1,0 +1,196 @@
+import { type ReactNode, useMemo } from "react";
+import { CumulativePopulation } from "~/components/charts/cumulative-population";
+import { EnergyLadder } from "~/components/charts/energy-ladder";
+import { CopyButton } from "~/components/ui/copy-button";
+import { DepthKey } from "~/components/ui/depth-key";
+import { LabelledDepthStrip } from "~/components/ui/depth-strip";
+import { Formula } from "~/components/ui/formula";
+import { LevelName } from "~/components/ui/level-marker";
+import { Note } from "~/components/ui/note";
+import { FlatMoleculeDrawing } from "~/components/workbench/flat-drawing";
+import type { EditionView } from "~/lib/edition/views";
+import { formatCount, formatDateTime, formatEnergy, plural, trimmed, withUnit } from "~/lib/format";
+import { byPopulation, outsideWindow } from "~/lib/workbench/conformers";
+import { cumulativePopulation } from "~/lib/workbench/cumulative";
+import { energyLadder } from "~/lib/workbench/ladder";
+import type { EditionAddresses } from "./addresses";
+import { Edition3D } from "./edition-3d";
+import { EditionDownloads } from "./edition-downloads";
+import { EditionHead } from "./edition-head";
+import { PopulationTable } from "./population-table";
+import { Shapes } from "./shapes";
+
+/** An edition for somebody who decides with it: what was found, how sure, by which method, and the files. */
+export function EditionReport({
+  edition,
+  addresses,
+  children,
+}: {
+  edition: EditionView;
+  addresses: EditionAddresses;
+  /** After the method: the logbook's part. */
+  children?: ReactNode;
+}) {
+  return (
+    <article>
+      <Head edition={edition} />
+      <Strip edition={edition} />
+      <Shapes edition={edition} />
+      {edition.viewable.length > 0 ? <Edition3D edition={edition} address={addresses.positions} /> : null}
+      <div className="mt-10 grid gap-x-12 gap-y-10 lg:grid-cols-[minmax(0,3fr)_minmax(0,2fr)] print:grid-cols-1">
+        <PopulationTable edition={edition} />
+        <HowSure edition={edition} />
+      </div>
+      <Plots edition={edition} />
+      <div className="mt-10 grid gap-x-12 gap-y-10 lg:grid-cols-2 print:grid-cols-1">
+        <Method edition={edition} />
+        <EditionDownloads edition={edition} addresses={addresses} />
+      </div>
+      {children}
+      <p className="mt-10 border-t border-rule pt-4 text-ink-2">
+        Computed estimates, to be confirmed by experiment; no basis for dosing, safety or regulatory
+        decisions. Local rules and licensed practice come first. {edition.caution}
+      </p>
+    </article>
+  );
+}
+
+const CHIRALITY = { achiral: "achiral", chiral: "chiral", unsure: "chirality unsure, taken as chiral" };
+
+function Head({ edition }: { edition: EditionView }) {
+  const { ensemble, summary } = edition;
+  const positions = useMemo(
+    () => (edition.shapes[0] ? Float64Array.from(edition.shapes[0].positions) : null),
+    [edition.shapes],
+  );
+  const [first, ...more] = summary;
+  return (
+    <div className="grid items-end gap-x-12 gap-y-4 md:grid-cols-[minmax(0,1fr)_auto] print:grid-cols-[minmax(0,1fr)_auto]">
+      <div className="max-w-[46rem]">
+        <p className="figures text-xs font-medium text-ink-3">
+          Edition {edition.number}, frozen {formatDateTime(edition.frozenAt)} by the team {edition.team}
+        </p>
+        <h1 className="mt-1 text-lg font-semibold tracking-title break-words sm:text-2xl">{ensemble.name}</h1>
+        {edition.title ? <p className="mt-1 text-base text-ink-2">{edition.title}</p> : null}
+        <p className="figures mt-3 text-base text-pretty sm:text-lg">{first}</p>
+        {more.length > 0 ? (
+          <p className="figures mt-2 text-base text-pretty text-ink-2">{more.join(" ")}</p>
+        ) : null}
+        {edition.remark ? <Note className="mt-4 whitespace-pre-line">{edition.remark}</Note> : null}
+      </div>
+      <div>
+        <FlatMoleculeDrawing
+          elements={ensemble.elements}
+          bonds={ensemble.bonds}
+          positions={positions}
+          name={ensemble.name}
+        />
+        <p className="figures mt-2 text-xs text-ink-3">
+          <Formula>{ensemble.formula}</Formula>, {plural(ensemble.atoms, "atom")},{" "}
+          {CHIRALITY[ensemble.chirality]}
+        </p>
+      </div>
+    </div>
+  );
+}
+
+function Strip({ edition }: { edition: EditionView }) {
+  if (edition.temperature === null) return null;
+  const ranked = byPopulation(edition.rows);
+  return (
+    <div className="mt-8">
+      <LabelledDepthStrip
+        shares={ranked.map((row) => row.population ?? 0)}
+        names={ranked.map((row) => row.name)}
+      />
+      <div className="mt-2">
+        <DepthKey />
+      </div>
+    </div>
+  );
+}
+
+/** What limits the results; what is for somebody to settle stands first. */
+function HowSure({ edition }: { edition: EditionView }) {
+  const sorted = [...edition.findings].sort((a, b) => Number(b.kind === "open") - Number(a.kind === "open"));
+  return (
+    <section aria-labelledby="edition-sure">
+      <EditionHead id="edition-sure">How sure</EditionHead>
+      <ul className="mt-3 border-t border-rule">
+        {sorted.map((finding) => (
+          <li
+            key={finding.title}
+            className={`keep figures border-b border-rule py-3 ${finding.kind === "open" ? "border-l-3 border-l-mark pl-4" : ""}`}
+          >
+            <strong className="font-semibold">{finding.title}</strong> {finding.text}
+          </li>
+        ))}
+      </ul>
+    </section>
+  );
+}
+
+function Plots({ edition }: { edition: EditionView }) {
+  const { rows, temperature, thermo } = edition;
+  if (temperature === null || thermo === null) return null;
+  const ladder = energyLadder(rows, temperature, null);
+  const cumulative = cumulativePopulation(rows);
+  return (
+    <section className="mt-10" aria-label="Plots">
+      <div className="grid gap-x-10 gap-y-8 lg:grid-cols-2 print:grid-cols-1">
+        {ladder ? (
+          <EnergyLadder
+            rows={rows}
+            ladder={ladder}
+            outside={outsideWindow(rows)}
+            windowKcal={null}
+            temperatureK={temperature}
+            selected={NOBODY}
+            onChoose={() => {}}
+          />
+        ) : null}
+        {cumulative && ladder ? (
+          <CumulativePopulation cumulative={cumulative} windowKcal={null} top={ladder.top} />
+        ) : null}
+      </div>
+      <p className="figures mt-4 text-ink-2">
+        Conformational free energy {withUnit(formatEnergy(thermo.freeEnergy), "kcal/mol")} and mean energy{" "}
+        {withUnit(formatEnergy(thermo.energy), "kcal/mol")} above the lowest conformer, entropy{" "}
+        {withUnit(trimmed(thermo.entropy, 2), "cal/(mol K)")}, effectively {trimmed(thermo.effectiveCount, 1)}{" "}
+        equally populated states.
+      </p>
+    </section>
+  );
+}
+
+const NOBODY: ReadonlySet<number> = new Set();
+
+function Method({ edition }: { edition: EditionView }) {
+  const [text, ...assumed] = edition.methods;
+  return (
+    <section aria-labelledby="edition-method">
+      <EditionHead id="edition-method">Method</EditionHead>
+      <p className="figures mt-3 max-w-read text-base text-pretty">{text}</p>
+      {assumed.map((line) => (
+        <Note key={line} className="figures mt-2">
+          {line}
+        </Note>
+      ))}
+      <p className="mt-2 flex gap-4 print:hidden">
+        <CopyButton as="link" text={text ?? ""}>
+          Copy
+        </CopyButton>
+      </p>
+      <h3 className="mt-5 text-sm font-semibold">To cite it</h3>
+      <p className="figures mt-1 max-w-read text-xs break-words text-ink-2">{edition.citations.text}</p>
+      {edition.level ? (
+        <p className="figures mt-4 flex flex-wrap items-center gap-x-4 text-ink-2">
+          <LevelName name={edition.level.name} ordinal={edition.level.ordinal} />
+          <span>
+            {plural(edition.ensemble.frames, "frame")}, {formatCount(edition.ensemble.held)} held
+          </span>
+        </p>
+      ) : null}
+    </section>
+  );
+}
