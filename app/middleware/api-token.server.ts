@@ -60,7 +60,7 @@ export const apiTokenMiddleware: MiddlewareFunction<Response> = async ({ request
       ),
     );
   }
-  context.set(actorContext, actor);
+  context.set(actorContext, { ...actor, origin: context.get(addressContext) });
   const uploads = settings.API_UPLOADS_PER_MINUTE;
   const refused =
     overRate(`token:${actor.tokenId}`, settings.API_CALLS_PER_MINUTE, "calls a minute a token") ??

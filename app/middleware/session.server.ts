@@ -1,5 +1,5 @@
 import type { MiddlewareFunction } from "react-router";
-import { actorContext, cookieChangeContext, requestIdContext } from "../context.ts";
+import { actorContext, addressContext, cookieChangeContext, requestIdContext } from "../context.ts";
 import { type FoundSession, findSession } from "../services/auth/find-session.server.ts";
 import { within } from "../services/health.server.ts";
 import { asDomainError } from "../services/http.server.ts";
@@ -25,7 +25,9 @@ export const sessionMiddleware: MiddlewareFunction<Response> = async ({ request,
     const requestId = context.get(requestIdContext);
     return refuse(url, asDomainError(error, requestId), requestId);
   }
-  if (session !== null) context.set(actorContext, { kind: "user", ...session });
+  if (session !== null) {
+    context.set(actorContext, { kind: "user", ...session, origin: context.get(addressContext) });
+  }
 
   const response = await next();
 

@@ -220,6 +220,7 @@ describe("a grant", () => {
       role: "guest",
       userId: null,
       tokenId: null,
+      origin: null,
       onlyOwnOfToken: null,
       ensembleId: objects.example,
     });

@@ -203,7 +203,7 @@ describe("GET /openapi.json", () => {
 });
 
 it("answers problem documents for addresses that do not exist, whatever the method", async () => {
-  for (const path of ["/nothing", "/ensembles/x/y", "/sifts/x/export.sdf"]) {
+  for (const path of ["/nothing", "/ensembles/x/y", "/sifts/x/export.pdf"]) {
     for (const method of ["GET", "POST", "DELETE"]) {
       const response = await call(`/api/v1${path}`, { method, token: tokens.analyst });
       expect(response.status, `${method} ${path}`).toBe(404);

@@ -47,7 +47,15 @@ describe("POST /ensembles", () => {
     const got = await (await call(`/api/v1/ensembles/${body.id}`, { token })).json();
     expect(got).toEqual(body);
     expect(got.columns).toEqual([
-      { id: body.levels[0].id, name: "A method", kind: "energy", unit: "kcal/mol", count: 3, missing: 0 },
+      {
+        id: body.levels[0].id,
+        name: "A method",
+        kind: "energy",
+        unit: "kcal/mol",
+        rule: null,
+        count: 3,
+        missing: 0,
+      },
     ]);
   });
 
@@ -186,7 +194,13 @@ describe("the same bytes again", () => {
       series: "New",
     });
     expect(again.status).toBe(200);
-    expect(await again.json()).toEqual(await (await call(`/api/v1/ensembles/${first.id}`, { token })).json());
+    const { warnings, ...same } = await again.json();
+    expect(same).toEqual(await (await call(`/api/v1/ensembles/${first.id}`, { token })).json());
+    // Name and series are no answers: they stay, and that is said.
+    expect(warnings.map(({ message }: { message: string }) => message)).toEqual([
+      expect.stringContaining("The name was not taken up"),
+      expect.stringContaining("The series was not taken up"),
+    ]);
     expect(await storedRows()).toEqual(before);
   });
 

@@ -8,13 +8,15 @@ import { forbidden, notFound } from "../http.server.ts";
 /** Who calls. */
 export type Actor =
   | { kind: "anonymous" }
-  | { kind: "user"; userId: string; sessionId: string }
+  | { kind: "user"; userId: string; sessionId: string; origin?: string }
   | {
       kind: "token";
       userId: string;
       tokenId: string;
       teamId: string;
       scope: "full" | "read" | "add";
+      /** Address of the call, as the trusted proxy setting gives it; for the logbook. */
+      origin?: string;
     };
 
 /** What an act does to its object. */
@@ -41,6 +43,8 @@ export interface Grant {
   userId: string | null;
   tokenId: string | null;
   onlyOwnOfToken: string | null;
+  /** Address of the call, for the logbook. */
+  origin?: string | null;
 }
 
 const ROLE_MAY: Record<Grant["role"], readonly Verb[]> = {
@@ -101,6 +105,7 @@ function grantOf(actor: Actor, teamId: string, role: Grant["role"]): Grant {
     role,
     userId: actor.kind === "anonymous" ? null : actor.userId,
     tokenId: token?.tokenId ?? null,
+    origin: actor.kind === "anonymous" ? null : (actor.origin ?? null),
     onlyOwnOfToken: token?.scope === "add" ? token.tokenId : null,
   };
 }
