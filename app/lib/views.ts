@@ -23,6 +23,10 @@ export interface LevelView {
 export interface FileView {
   position: number;
   name: string;
+  /** Name of the zip archive that it came in; null for a file of its own. */
+  archive: string | null;
+  /** Which upload or search brought it, from 1. */
+  batch: number;
   format: string;
   sha256: string;
   bytes: number;
@@ -51,6 +55,8 @@ export interface EnsembleView {
   /** Orders of the bonds and charges of the atoms as the file (or a SMILES) states them; null where it does not. */
   bondTable: { orders: number[]; charges: number[] } | null;
   levels: LevelView[];
+  /** Property columns: what can be averaged. */
+  properties: number;
   files: FileView[];
   createdAt: string;
   changedAt: string;

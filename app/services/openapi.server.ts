@@ -35,11 +35,13 @@ function call(
   return { operationId, summary, ...operation, responses: { ...operation.responses, ...REFUSALS } };
 }
 
-const upload = {
+/** A form with files beside its fields. */
+const formWithFiles = (fields: typeof api.uploadFieldsSchema | typeof api.batchFieldsSchema) => ({
   required: true,
   content: {
     "multipart/form-data": {
-      schema: api.uploadFieldsSchema.extend({
+      schema: z.strictObject({
+        ...fields.shape,
         file: z
           .array(z.string().meta({ format: "binary" }))
           .min(1)
@@ -49,7 +51,9 @@ const upload = {
       }),
     },
   },
-};
+});
+const upload = formWithFiles(api.uploadFieldsSchema);
+const batchUpload = formWithFiles(api.batchFieldsSchema);
 
 const ensembles = {
   "/ensembles": {
@@ -75,6 +79,19 @@ const ensembles = {
     get: call("getEnsemble", "One ensemble with its intake report, levels and columns", {
       requestParams: { path },
       responses: { "200": json(api.ensembleSchema, "The ensemble") },
+    }),
+  },
+  "/ensembles/{id}/files": {
+    post: call("addFiles", "Add a second search or a further batch of the same molecule", {
+      requestParams: { path },
+      requestBody: batchUpload,
+      responses: {
+        "201": json(api.ensembleSchema, "The ensemble with the frames of the batch, numbered on"),
+        "200": json(api.ensembleSchema, "The same bytes came before: nothing was added"),
+        "409": problem("Questions are open, or the same bytes came before with other answers"),
+        "413": problem("More bytes than the limit"),
+        "415": problem("No multipart/form-data"),
+      },
     }),
   },
   "/ensembles/{id}/answers": {

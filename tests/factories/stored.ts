@@ -1,6 +1,7 @@
 import { count } from "drizzle-orm";
 import { db } from "~/db/client.server";
 import {
+  batches,
   columns,
   ensembleFiles,
   ensembles,
@@ -17,6 +18,7 @@ import {
 } from "~/db/schema.server";
 
 const TABLES = {
+  batches,
   columns,
   ensembleFiles,
   ensembles,

@@ -45,6 +45,8 @@ function fill(pattern: string, known: boolean): string {
     .replace(":id", known ? id : newId())
     .replace(":frame", "1")
     .replace(":position", "0")
+    .replace(":number", "1")
+    .replace(":name", "results.csv")
     .replace("/*", "/nothing");
 }
 
@@ -80,7 +82,9 @@ describe("objects of another team look like objects that are not there", () => {
   it.each(PATTERNS)("at %s, for a member of another team", async (pattern) => {
     const who = pattern.startsWith("/api/") ? { token: people.outsiderToken } : { cookie: people.outsider };
     expect(await same(pattern, "GET", who)).toBe(
-      /\/api\/.*(answers|reread|release|hold|sifts)$|^\/files\/.*\/sifts$/.test(pattern) ? 405 : 404,
+      /\/api\/.*(answers|reread|release|hold|sifts|files)$|^\/files\/.*\/(sifts|files)$/.test(pattern)
+        ? 405
+        : 404,
     );
     if (isCall(pattern)) {
       expect([404, 405]).toContain(await same(pattern, "POST", who));
@@ -108,12 +112,14 @@ describe("a reader", () => {
 
   const ACTS: [string, string][] = [
     ["POST", "/api/v1/ensembles"],
+    ["POST", "/api/v1/ensembles/:id/files"],
     ["POST", "/api/v1/ensembles/:id/answers"],
     ["POST", "/api/v1/ensembles/:id/reread"],
     ["POST", "/api/v1/ensembles/:id/frames/:frame/release"],
     ["POST", "/api/v1/ensembles/:id/frames/:frame/hold"],
     ["POST", "/api/v1/ensembles/:id/sifts"],
     ["DELETE", "/api/v1/sifts/:id"],
+    ["POST", "/files/ensembles/:id/files"],
     ["POST", "/files/ensembles/:id/sifts"],
     ["DELETE", "/files/sifts/:id"],
   ];

@@ -14,6 +14,8 @@ export interface KeptConformer {
   mirrorRmsd: number;
   /** Number of frames that show this conformer, itself included. */
   found: number;
+  /** The same by search, where the ensemble grew by further ones: batches from 1 in order, those that found it. */
+  foundIn?: { batch: number; found: number }[];
   /** Present and true where an RMSD concerned could only be bounded from above. */
   upperBound?: boolean;
 }

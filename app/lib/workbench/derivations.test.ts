@@ -101,6 +101,7 @@ const ensemble: EnsembleView = {
   remarked: 5,
   held: 3,
   openQuestions: 0,
+  properties: 0,
   chirality: "achiral",
   chiralityNote: "",
   example: false,

@@ -29,7 +29,10 @@ function identityOf({ group }: ReadResult) {
 }
 
 /** Orders, charges and radicals as the files state them. */
-function bondTableOf({ classification, graph }: ReadResult): (typeof ensembles.$inferInsert)["bondTable"] {
+export function bondTableOf({
+  classification,
+  graph,
+}: ReadResult): (typeof ensembles.$inferInsert)["bondTable"] {
   const { table } = classification;
   if (table?.orders == null) return null;
   const atoms = graph.elements.length;
@@ -44,7 +47,7 @@ function bondTableOf({ classification, graph }: ReadResult): (typeof ensembles.$
 }
 
 /** The scan of the comments, made anew where the number was named after the files. */
-async function scanWith(reading: Reading, result: ReadResult, energyFrom: string | null) {
+export async function scanWith(reading: Reading, result: ReadResult, energyFrom: string | null) {
   const named = energyFrom === "none" ? null : energyFrom;
   if (reading.options.energyFrom === named) return result;
   return scanComments(reading.ensembleId, result.files, named);
@@ -108,20 +111,21 @@ export async function completeReading(
 }
 
 /** One message a frame that is held: why; its remarks would only hide that. */
-function listed(result: ReadResult, accepted: (frame: number) => boolean): IntakeMessage[] {
+export function listed(result: ReadResult, accepted: (frame: number) => boolean): IntakeMessage[] {
   return result.messages
     .messages()
     .filter(({ severity, frame }) => severity !== "remark" || frame === undefined || accepted(frame));
 }
 
-async function insertFiles(reading: Reading, sources: readonly string[]): Promise<void> {
+/** @param sources ids of the kept files, one a file of the reading */
+export async function insertFiles(reading: Reading, sources: readonly string[], batch = 0): Promise<void> {
   await db.insert(ensembleFiles).values(
-    reading.files.map((file) => ({
+    reading.files.map(({ source: _, ...file }, at) => ({
       ...file,
       name: [...file.name].slice(0, 255).join(""),
       ensembleId: reading.ensembleId,
-      batch: 0,
-      sourceId: sources[file.position] ?? "",
+      batch,
+      sourceId: sources[at] ?? "",
     })),
   );
 }

@@ -1,14 +1,14 @@
 import { eq } from "drizzle-orm";
 import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { isDuplicate } from "../../db/driver-errors.server.ts";
-import { ensembles } from "../../db/schema.server.ts";
+import { batches, ensembles } from "../../db/schema.server.ts";
 import type { UploadFields, Warnings } from "../../lib/api/schemas.ts";
 import type { Grant } from "../auth/access.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { type CompletedReading, completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
 import { DEFAULT_SERIES, seriesByName } from "./create-series.server.ts";
 import { levelsInUse } from "./intake-rows.server.ts";
-import { endReading } from "./read-stored.server.ts";
+import { endReading, sourcesOf } from "./read-stored.server.ts";
 import { answerSameFiles, filesSha, findSameFiles } from "./same-files.server.ts";
 import { siftAfterIntake } from "./sift-after-intake.server.ts";
 import { pointFiles } from "./store-files.server.ts";
@@ -57,9 +57,9 @@ async function publish(
   done: CompletedReading,
 ): Promise<void> {
   const { reading, store } = upload;
-  const name = fields.name ?? nameOfFile(reading.files[0]?.name ?? "Ensemble");
+  const name = fields.name ?? nameOfFile(upload.names[0] ?? "Ensemble");
   const act = async (tx: Transaction) => {
-    await pointFiles(tx, reading.ensembleId, await store.publish(tx));
+    await pointFiles(tx, reading.ensembleId, await upload.publish(tx));
     const seriesId = await seriesByName(tx, grant.teamId, fields.series ?? DEFAULT_SERIES, grant);
     const now = new Date();
     await tx
@@ -74,10 +74,19 @@ async function publish(
         changedAt: now,
       })
       .where(eq(ensembles.id, reading.ensembleId));
-    const files = reading.files.map((file, at) => ({
-      name: file.name,
-      sha256: store.written[at]?.sha256.toString("hex") ?? "",
-      bytes: store.written[at]?.bytes ?? 0,
+    await tx.insert(batches).values({
+      ensembleId: reading.ensembleId,
+      batch: 0,
+      filesSha: sha,
+      answers: written,
+      createdBy: grant.userId,
+      createdByToken: grant.tokenId,
+      createdAt: now,
+    });
+    const files = store.written.map((file, at) => ({
+      name: upload.names[at] ?? "",
+      sha256: file.sha256.toString("hex"),
+      bytes: file.bytes,
     }));
     const { energyUnit, energyFrom, level } = written;
     await writeEntry(tx, { teamId: grant.teamId, ensembleId: reading.ensembleId }, grant, {
@@ -108,8 +117,7 @@ export async function finishUpload(all: Finish): Promise<TakenIn> {
   if (known) {
     return { ...(await answerSameFiles(known, written, all)), teamId: grant.teamId, created: false };
   }
-  const kept = upload.reading.files.map(({ name }, at) => ({ name, sourceId: upload.sourceOf(at) }));
-  const { reading, result } = await endReading(upload.reading, grant, kept);
+  const { reading, result } = await endReading(upload.reading, grant, upload.kept());
   upload.reading = reading;
   const done = await completeReading(upload.reading, result, {
     answers: written,
@@ -120,7 +128,7 @@ export async function finishUpload(all: Finish): Promise<TakenIn> {
       confirmUnit: interactive,
       knownLevels: interactive ? await levelsInUse(grant.teamId) : [],
     },
-    sources: kept.map((file) => file.sourceId),
+    sources: sourcesOf(reading, upload.kept()),
   });
   for (let attempt = 1; ; attempt++) {
     try {

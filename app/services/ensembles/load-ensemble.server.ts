@@ -15,6 +15,8 @@ export async function findFiles(ensembleId: string): Promise<FileView[]> {
     .select({
       position: ensembleFiles.position,
       name: ensembleFiles.name,
+      entry: ensembleFiles.entry,
+      batch: ensembleFiles.batch,
       format: ensembleFiles.format,
       sha256: sources.sha256,
       bytes: sources.bytes,
@@ -25,7 +27,13 @@ export async function findFiles(ensembleId: string): Promise<FileView[]> {
     .innerJoin(sources, eq(sources.id, ensembleFiles.sourceId))
     .where(eq(ensembleFiles.ensembleId, ensembleId))
     .orderBy(asc(ensembleFiles.position));
-  return rows.map((row) => ({ ...row, sha256: row.sha256?.toString("hex") ?? "" }));
+  return rows.map(({ name, entry, batch, sha256, ...row }) => ({
+    ...row,
+    name: entry ?? name,
+    archive: entry === null ? null : name,
+    batch: batch + 1,
+    sha256: sha256?.toString("hex") ?? "",
+  }));
 }
 
 /** The row of a living ensemble with the names around it, bound to the team of the grant. */
@@ -62,6 +70,7 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
   const { ensemble } = row;
   const [strip, files] = await Promise.all([frameStrip(ensemble.id), findFiles(ensemble.id)]);
   const graph = unpackMolecule(ensemble);
+  const columns = await findColumns(ensemble.id, strip);
   return {
     id: ensemble.id,
     name: ensemble.name,
@@ -80,7 +89,8 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
     elements: [...graph.elements],
     bonds: [...graph.bonds],
     bondTable: statedTable(ensemble.bondTable, graph),
-    levels: toLevels(await findColumns(ensemble.id, strip)),
+    levels: toLevels(columns),
+    properties: columns.filter((column) => column.kind === "property").length,
     files,
     createdAt: ensemble.createdAt.toISOString(),
     changedAt: ensemble.changedAt.toISOString(),

@@ -1,3 +1,6 @@
+import { asc, eq } from "drizzle-orm";
+import { db, type Queryable } from "../../db/client.server.ts";
+import { ensembleFiles } from "../../db/schema.server.ts";
 import { log } from "../log.server.ts";
 import { Reading, type ReadingOptions, type ReadResult } from "./reading.server.ts";
 import { readSource } from "./source-writer.server.ts";
@@ -6,6 +9,33 @@ import { readSource } from "./source-writer.server.ts";
 export interface StoredFile {
   name: string;
   sourceId: string;
+}
+
+/** Ids of the kept bytes, one a file of the reading. */
+export function sourcesOf(reading: Reading, files: readonly StoredFile[]): string[] {
+  return reading.files.map(({ source }) => files[source]?.sourceId ?? "");
+}
+
+/** Files of an ensemble as they are kept, in order; entries of one archive are one file. */
+export async function findStored(
+  ensembleId: string,
+  on: Queryable = db,
+): Promise<(StoredFile & { batch: number })[]> {
+  const rows = await on
+    .select({
+      name: ensembleFiles.name,
+      entry: ensembleFiles.entry,
+      sourceId: ensembleFiles.sourceId,
+      batch: ensembleFiles.batch,
+    })
+    .from(ensembleFiles)
+    .where(eq(ensembleFiles.ensembleId, ensembleId))
+    .orderBy(asc(ensembleFiles.position));
+  const isNext = (k: number) =>
+    rows[k]?.entry !== null &&
+    rows[k]?.sourceId === rows[k - 1]?.sourceId &&
+    rows[k]?.batch === rows[k - 1]?.batch;
+  return rows.filter((_, k) => !isNext(k)).map(({ name, sourceId, batch }) => ({ name, sourceId, batch }));
 }
 
 type By = { teamId: string; userId: string | null; tokenId: string | null };

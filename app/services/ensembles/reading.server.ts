@@ -37,6 +37,8 @@ const SIGN_OF_LIFE_MS = 60_000;
 
 export interface ReadFile {
   position: number;
+  /** Which of the kept files it is, from 0: entries of one archive share theirs. */
+  source: number;
   name: string;
   format: string;
   firstFrame: number;
@@ -107,6 +109,7 @@ export class Reading {
   private readonly labels = new Map<number, (string | null)[]>();
   private readonly formats = new Set<string>();
   private frames = 0;
+  private sources = 0;
   private sound = 0;
   private extended = 0;
   private firstComment = "";
@@ -170,6 +173,7 @@ export class Reading {
    * @throws IntakeRejection, or DomainError too-large
    */
   async readFile(name: string, source: AsyncIterable<Uint8Array>): Promise<void> {
+    const own = this.sources++;
     const settings = env();
     const remark = (message: Parameters<MessageList["add"]>[0]) => this.messages.add(message);
     const file = await openFile(source, { file: name, limit: settings.MAX_FILE_BYTES, remark });
@@ -203,6 +207,7 @@ export class Reading {
     const kind = format === "sdf" ? "SDF" : "XYZ";
     this.files.push({
       position,
+      source: own,
       name,
       format: file.packed ? `${kind}, gzip` : kind,
       firstFrame: before + 1,

@@ -1,6 +1,7 @@
-import { and, asc, eq, inArray, isNull, like, ne, or } from "drizzle-orm";
+import { and, eq, inArray, isNull, like, ne, or } from "drizzle-orm";
 import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
 import {
+  batches,
   columns,
   ensembleFiles,
   ensembles,
@@ -16,8 +17,9 @@ import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
 import { completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
 import { countFrames, levelsInUse } from "./intake-rows.server.ts";
-import { readStored, takeBack } from "./read-stored.server.ts";
+import { findStored, readStored, sourcesOf, takeBack } from "./read-stored.server.ts";
 import { refreshChirality } from "./refresh-chirality.server.ts";
+import { rereadBatches } from "./reread-batches.server.ts";
 import { siftAfterIntake } from "./sift-after-intake.server.ts";
 
 type At = Grant & { ensembleId: string };
@@ -111,6 +113,17 @@ async function keepDecisions(
   }
 }
 
+/** A batch that was added while the files were read would be lost. */
+async function checkFilesStand(tx: Transaction, ensembleId: string, readId: string): Promise<void> {
+  const [now, read] = [await findStored(ensembleId, tx), await findStored(readId, tx)];
+  if (now.length === read.length) return;
+  throw new DomainError(
+    "conflict",
+    "Files were added meanwhile",
+    "While the files were read again, somebody added a batch. Nothing was changed; send the answers once more.",
+  );
+}
+
 /** The new reading takes the place of the old one, in one moment. */
 async function adopt(tx: Transaction, at: At, readId: string, questionCount: number): Promise<void> {
   const rows = await tx
@@ -121,6 +134,7 @@ async function adopt(tx: Transaction, at: At, readId: string, questionCount: num
   const [read] = await tx.select().from(ensembles).where(eq(ensembles.id, readId));
   const old = rows[0];
   if (old === undefined || read === undefined) throw notFound();
+  await checkFilesStand(tx, old.id, readId);
   const held = await heldByHand(tx, old.id);
   const released = await releasedByHand(tx, old.id);
   await removeOld(tx, old.id);
@@ -147,6 +161,10 @@ async function adopt(tx: Transaction, at: At, readId: string, questionCount: num
     .update(ensembles)
     .set({ ...molecule, readerVersion })
     .where(eq(ensembles.id, old.id));
+  await tx
+    .update(batches)
+    .set({ answers })
+    .where(and(eq(batches.ensembleId, old.id), eq(batches.batch, 0)));
   const counts = await countFrames(tx, old.id);
   await tx
     .update(ensembles)
@@ -179,12 +197,11 @@ export async function rereadEnsemble(options: {
 }): Promise<void> {
   const at = await accessEnsemble(options.actor, "take-in", options.ensembleId);
   const { answers } = options;
-  const interactive = options.actor.kind === "user";
-  const files = await db
-    .select({ name: ensembleFiles.name, sourceId: ensembleFiles.sourceId })
-    .from(ensembleFiles)
-    .where(eq(ensembleFiles.ensembleId, at.ensembleId))
-    .orderBy(asc(ensembleFiles.position));
+  const all = await findStored(at.ensembleId);
+  const [files, further] = [all.filter(({ batch }) => batch === 0), all.filter(({ batch }) => batch > 0)];
+  const before = await answersBefore(at);
+  // The answer to a question would be for all frames alike, and batches have answers of their own.
+  const interactive = options.actor.kind === "user" && further.length === 0;
   const { reading, result } = await readStored(at, files, {
     energyFrom: answers.energyFrom === "none" ? null : answers.energyFrom,
   });
@@ -198,12 +215,24 @@ export async function rereadEnsemble(options: {
         confirmUnit: interactive,
         knownLevels: interactive ? await levelsInUse(at.teamId) : [],
       },
-      sources: files.map((file) => file.sourceId),
+      sources: sourcesOf(reading, files),
     });
+    await rereadBatches(at, reading.ensembleId, further, before);
     await inTransaction((tx) => adopt(tx, at, reading.ensembleId, done.questions));
   } catch (error) {
     await takeBack(reading);
     throw error;
   }
   await siftAfterIntake(at);
+}
+
+/** The answers that the ensemble was read with until now. */
+async function answersBefore(at: At): Promise<WrittenAnswers> {
+  const rows = await db
+    .select({ answers: ensembles.answers })
+    .from(ensembles)
+    .where(and(eq(ensembles.id, at.ensembleId), eq(ensembles.teamId, at.teamId)));
+  const row = rows[0];
+  if (row === undefined) throw notFound();
+  return row.answers;
 }

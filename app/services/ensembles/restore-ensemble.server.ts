@@ -1,27 +1,16 @@
-import { and, asc, eq, isNotNull, isNull } from "drizzle-orm";
-import { db, inTransaction, type Queryable } from "../../db/client.server.ts";
+import { and, eq, isNotNull, isNull } from "drizzle-orm";
+import { db, inTransaction } from "../../db/client.server.ts";
 import { isId } from "../../db/new-id.server.ts";
-import { ensembleFiles, ensembles, sources } from "../../db/schema.server.ts";
+import { ensembles } from "../../db/schema.server.ts";
 import { type Actor, accessTeam } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
-import { filesSha, findSameFiles } from "./same-files.server.ts";
+import { firstFilesSha } from "./batches.server.ts";
+import { findSameFiles } from "./same-files.server.ts";
 
 /** A deleted ensemble; one whose upload never ended is none. */
 const deleted = (ensembleId: string) =>
   and(eq(ensembles.id, ensembleId), isNotNull(ensembles.deletedAt), isNull(ensembles.readingSince));
-
-/** The checksum of the first upload's files, as taking in made it; null where one of them is gone. */
-async function firstFilesSha(tx: Queryable, ensembleId: string): Promise<Buffer | null> {
-  const rows = await tx
-    .select({ sha: sources.sha256 })
-    .from(ensembleFiles)
-    .innerJoin(sources, eq(sources.id, ensembleFiles.sourceId))
-    .where(and(eq(ensembleFiles.ensembleId, ensembleId), eq(ensembleFiles.batch, 0)))
-    .orderBy(asc(ensembleFiles.position));
-  const shas = rows.flatMap(({ sha }) => (sha === null ? [] : [sha]));
-  return shas.length > 0 && shas.length === rows.length ? filesSha(shas) : null;
-}
 
 /**
  * Brings a deleted ensemble back as it was. Where the same files were taken in anew since, that ensemble goes on

@@ -84,13 +84,20 @@ export class FileStore {
   }
 }
 
-/** Puts kept files in the place of those that an ensemble's rows name. */
+/**
+ * Puts kept files in the place of those that an ensemble's rows name.
+ *
+ * @param sourceIds one a row, in order of position
+ * @param first position of the first row
+ */
 export async function pointFiles(
   tx: Queryable,
   ensembleId: string,
   sourceIds: readonly string[],
+  first = 0,
 ): Promise<void> {
-  for (const [position, sourceId] of sourceIds.entries()) {
+  for (const [at, sourceId] of sourceIds.entries()) {
+    const position = first + at;
     await tx
       .update(ensembleFiles)
       .set({ sourceId })

@@ -1,3 +1,4 @@
+import { uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { type Actor, accessTeam, type Grant } from "../auth/access.server.ts";
 import { finishUpload, type TakenIn } from "./finish-upload.server.ts";
 import type { FormReader } from "./read-multipart.server.ts";
@@ -19,7 +20,7 @@ export async function takeInFor(options: {
   interactive: boolean;
 }): Promise<TakenIn> {
   const { grantOf, form, interactive } = options;
-  const fields = new FormFields(interactive);
+  const fields = new FormFields(uploadFieldsSchema, interactive ? ["team"] : []);
   let upload: Upload | null = null;
   let grant: Grant | null = null;
   try {

@@ -1,5 +1,5 @@
+import type { z } from "zod";
 import { faultsOf } from "../../lib/api/fault-words.ts";
-import { type UploadFields, uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
 
 /** 422 of an upload with the field at fault. */
@@ -8,12 +8,18 @@ export function invalidField(field: string, message: string): DomainError {
 }
 
 /** The fields of a form beside its files, each once. */
-export class FormFields {
+export class FormFields<Schema extends z.ZodObject> {
+  private readonly schema: Schema;
   private readonly values: Record<string, string> = Object.create(null);
   private readonly allowed: ReadonlySet<string>;
 
-  constructor(interactive: boolean) {
-    this.allowed = new Set([...Object.keys(uploadFieldsSchema.shape), ...(interactive ? ["team"] : [])]);
+  /** @param beside fields that the schema does not know and `check` leaves out */
+  constructor(
+    schema: Schema,
+    private readonly beside: readonly string[] = [],
+  ) {
+    this.schema = schema;
+    this.allowed = new Set([...Object.keys(schema.shape), ...beside]);
   }
 
   add(name: string, value: string): void {
@@ -35,9 +41,9 @@ export class FormFields {
     return this.values[name] ?? null;
   }
 
-  check(): UploadFields {
-    const { team: _, ...rest } = this.values;
-    const read = uploadFieldsSchema.safeParse(rest, { reportInput: true });
+  check(): z.infer<Schema> {
+    const rest = Object.entries(this.values).filter(([name]) => !this.beside.includes(name));
+    const read = this.schema.safeParse(Object.fromEntries(rest), { reportInput: true });
     if (read.success) return read.data;
     const faults = faultsOf(read.error);
     const detail = faults.map((fault) => `${fault.field}: ${fault.message}`).join(" ");

@@ -1,13 +1,17 @@
+import type { Transaction } from "../../db/client.server.ts";
 import { escapeControls } from "../../lib/text/escape.ts";
 import type { Grant } from "../auth/access.server.ts";
 import { log } from "../log.server.ts";
 import { type FormPart, fileBytes } from "./read-multipart.server.ts";
+import type { StoredFile } from "./read-stored.server.ts";
 import { Reading, type ReadingOptions } from "./reading.server.ts";
 import { FileStore } from "./store-files.server.ts";
 
 /** One upload on its way: what it wrote so far, and how to take that back. */
 export class Upload {
   reading: Reading;
+  /** Of the files as sent. */
+  readonly names: string[] = [];
   readonly store: FileStore;
   private readonly grant: Grant;
 
@@ -21,9 +25,19 @@ export class Upload {
     this.store = new FileStore(grant.teamId);
   }
 
-  /** Id of the kept bytes of a file of the reading. */
-  sourceOf(at: number): string {
-    return this.store.written[at]?.sourceId ?? "";
+  /** The files as they are kept. */
+  kept(): StoredFile[] {
+    return this.store.written.map(({ sourceId }, at) => ({ name: this.names[at] ?? "", sourceId }));
+  }
+
+  /**
+   * Lets the kept files answer for their checksums.
+   *
+   * @returns their ids, one a file of the reading
+   */
+  async publish(tx: Transaction): Promise<string[]> {
+    const ids = await this.store.publish(tx);
+    return this.reading.files.map(({ source }) => ids[source] ?? "");
   }
 
   begin(): Promise<void> {
@@ -32,7 +46,8 @@ export class Upload {
 
   async readFile(part: Extract<FormPart, { kind: "file" }>): Promise<void> {
     const plain = escapeControls(part.filename).trim();
-    const name = plain === "" ? `file ${this.reading.files.length + 1}` : [...plain].slice(0, 255).join("");
+    const name = plain === "" ? `file ${this.names.length + 1}` : [...plain].slice(0, 255).join("");
+    this.names.push(name);
     const writer = await this.store.begin(name);
     await this.reading.readFile(name, this.store.keep(name, fileBytes(part.data), writer));
   }

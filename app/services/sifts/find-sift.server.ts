@@ -5,6 +5,7 @@ import type { SiftRecipe } from "../../lib/recipe/recipe.ts";
 import type { SiftResult } from "../../lib/recipe/result.ts";
 import type { SiftStatus, SiftView } from "../../lib/views.ts";
 import { siftInputSha } from "../ensembles/accepted-frames.server.ts";
+import { findBatchRanges, withFoundIn } from "../ensembles/batches.server.ts";
 import { notFound } from "../http.server.ts";
 import { progressHere } from "../jobs/state.server.ts";
 
@@ -112,12 +113,13 @@ export async function readResult(siftId: string): Promise<SiftResult | null> {
 
 /** A sift with its result as pages and the API show it. */
 export async function toSiftView(sift: FoundSift): Promise<SiftView> {
+  const result = sift.status === "done" ? await readResult(sift.id) : null;
   return {
     id: sift.id,
     status: sift.status,
     progress: sift.progress,
     recipe: sift.recipe,
-    result: sift.status === "done" ? await readResult(sift.id) : null,
+    result: result && withFoundIn(result, await findBatchRanges(sift.ensembleId)),
     error: sift.error,
     createdAt: sift.createdAt.toISOString(),
     current: sift.current,
