@@ -1,0 +1,228 @@
+import {
+  fixed,
+  formatCount,
+  formatEnergy,
+  formatPercent,
+  formatTemperature,
+  plural,
+  trimmed,
+  withUnit,
+} from "../format.ts";
+import { shareWords } from "../workbench/findings.ts";
+import { toCsv } from "../workbench/tsv.ts";
+import type { PlanOutcome } from "./evaluate.ts";
+import type { FrontPoint } from "./front.ts";
+import { RULES } from "./hours.ts";
+import type { HoursSource, Plan } from "./plan.ts";
+import type { PlansReport } from "./report.ts";
+
+/** Core hours as one would say them. */
+export function formatHours(hours: number): string {
+  if (hours === 0) return "0";
+  if (hours >= 99.5) return formatCount(Math.round(hours));
+  if (hours >= 9.95) return trimmed(hours, 1);
+  if (hours >= 0.01) return fixed(hours, 2);
+  return String(Number(hours.toPrecision(2)));
+}
+
+const coreHours = (hours: number) => withUnit(formatHours(hours), "core hours");
+const kcal = (value: number) => withUnit(formatEnergy(value), "kcal/mol");
+
+/** What the plan says first. */
+export function planFinding(plan: Plan, startName: string, outcome: PlanOutcome, front: FrontPoint[] | null) {
+  const parts = plan.steps.map((step, s) => {
+    const window = outcome.steps[s]!.windowKcal;
+    const from = s === 0 ? startName : plan.steps[s - 1]!.name;
+    const what =
+      window === null
+        ? `everything of ${from}`
+        : s === 0
+          ? `${kcal(window)} of ${from}`
+          : formatEnergy(window);
+    return `${what} to ${step.name}`;
+  });
+  const counts = outcome.steps.map((step) => formatCount(Math.round(step.carried.mean)));
+  const { kept } = outcome;
+  const range = `${formatPercent(kept.low, 1)} to ${formatPercent(kept.high, 1)}`;
+  return {
+    text:
+      `Carry ${parts.join(", then ")}: ${joinCounts(counts)}, ${coreHours(outcome.cost)}, ` +
+      `about ${shareWords(kept.mean)} of the final population.`,
+    second:
+      (kept.high - kept.low < 1e-9
+        ? "All energies are taken as exact."
+        : `With the errors assumed below, ${range}.`) + furtherWords(outcome, front),
+  };
+}
+
+function joinCounts(counts: readonly string[]): string {
+  const last = counts.at(-1)!;
+  const noun = counts.length === 1 && last === "1" ? "structure" : "structures";
+  return counts.length === 1 ? `${last} ${noun}` : `${counts.slice(0, -1).join(", ")} and ${last} ${noun}`;
+}
+
+/** What 99 % would cost beyond this plan, from the cheapest windows that reach it. */
+function furtherWords(outcome: PlanOutcome, front: FrontPoint[] | null): string {
+  const target = 0.99;
+  const at = front?.find((point) => point.kept >= target);
+  if (!at || outcome.kept.mean >= target) return "";
+  const more = at.cost - outcome.cost;
+  if (more <= 0) return ` Other windows reach 99 % for ${coreHours(at.cost)}.`;
+  const each = more / (100 * (at.kept - outcome.kept.mean));
+  return ` To reach 99 % costs ${coreHours(more)} more, ${formatHours(each)} for each further percent.`;
+}
+
+export interface Assumption {
+  origin: "your timings" | "rule of thumb" | "typed in" | "not known";
+  /** Bold clause. */
+  what: string;
+  /** What the result becomes if it is wrong. */
+  wrong: string;
+}
+
+/** Everything that a plan takes for granted, and what hangs on it. */
+export function planAssumptions(
+  plan: Plan,
+  outcome: PlanOutcome,
+  report: PlansReport,
+  atoms: number,
+): Assumption[] {
+  const hours = plan.steps.map((step, s): Assumption => {
+    const { hoursEach, cost, exponent, exponentFitted } = outcome.steps[s]!;
+    const other = hoursEach * 2;
+    return {
+      origin: originOf(step.hours),
+      what: `${coreHours(hoursEach)} for a structure at ${step.name}`,
+      wrong: `${hoursWords(step.hours, exponent, exponentFitted, atoms)} At ${formatHours(other)} the plan costs ${formatHours(outcome.cost + cost)}.`,
+    };
+  });
+  const errors = report.variants.map((variant): Assumption => {
+    const at = variant.of;
+    const last = plan.steps.at(-1)!;
+    const between =
+      at === "truth"
+        ? `on the energies of ${last.name}`
+        : `between ${at === 0 ? "the start" : plan.steps[at - 1]!.name} and ${plan.steps[at]!.name}`;
+    const sigma = at === "truth" ? plan.truthSigma : plan.steps[at]!.sigma;
+    return {
+      origin: "typed in",
+      what: `± ${kcal(sigma)} ${between}`,
+      wrong: `Independent for each conformer. At ± ${formatEnergy(variant.sigma)} the plan keeps ${formatPercent(variant.mean)}, ${formatPercent(variant.low)} to ${formatPercent(variant.high)}.`,
+    };
+  });
+  return [
+    ...hours,
+    ...errors,
+    {
+      origin: "typed in",
+      what: `${formatPercent(plan.failRate)} of the jobs are repeated`,
+      wrong: "None is lost for good, and a repeat costs as much as the first.",
+    },
+    {
+      origin: "typed in",
+      what: `${plural(plan.slots, "slot")} of ${plural(plan.coresPerSlot, "core")}`,
+      wrong: "Jobs start together in rounds and use their cores fully; a queue before them is not counted.",
+    },
+    {
+      origin: "not known",
+      what: "Structures may fall together at the next level",
+      wrong: "None is assumed to, so the cost is an upper bound.",
+    },
+    {
+      origin: "not known",
+      what: "Shapes the search never found",
+      wrong: "They are in no figure here: no window brings them back.",
+    },
+  ];
+}
+
+function originOf(source: HoursSource): Assumption["origin"] {
+  if (source.from === "rule") return "rule of thumb";
+  return source.from === "typed" ? "typed in" : "your timings";
+}
+
+function hoursWords(source: HoursSource, exponent: number | null, fitted: boolean, atoms: number): string {
+  if (source.from === "typed") return "As typed.";
+  if (source.from === "timings") return `Mean of ${plural(source.hours.length, "finished one")}.`;
+  if (source.from === "rule") {
+    const rule = RULES.find(({ id }) => id === source.rule);
+    return `${rule?.label ?? source.rule}: common practice, no source, scaled to ${plural(atoms, "atom")} by the power ${trimmed(exponent, 2)}.`;
+  }
+  const sizes = source.timings.map((t) => formatCount(t.atoms)).join(", ");
+  return `From timings at ${sizes} atoms, ${fitted ? "fitted" : "typed"} power ${trimmed(exponent, 2)} of the size.`;
+}
+
+/** The plan as text for the methods part of a report. */
+export function planText(plan: Plan, startName: string, outcome: PlanOutcome, of: number): string {
+  const sentences = plan.steps.map((step, s) => {
+    const { windowKcal, carried } = outcome.steps[s]!;
+    const before = s === 0 ? startName : plan.steps[s - 1]!.name;
+    const number = formatCount(Math.round(carried.mean));
+    const who =
+      windowKcal === null
+        ? `All conformers (${number})`
+        : `${s === 0 ? "All conformers" : "Those"} within ${kcal(windowKcal)} of the lowest at ${before} (${number} of ${s === 0 ? formatCount(of) : formatCount(Math.round(outcome.steps[s - 1]!.carried.mean))})`;
+    return `${who} are to be computed at ${step.name}.`;
+  });
+  const errors = plan.steps
+    .flatMap((step, s) => {
+      const before = s === 0 ? startName : plan.steps[s - 1]!.name;
+      return step.level === null ? [`${kcal(step.sigma)} between ${before} and ${step.name}`] : [];
+    })
+    .concat(plan.truthSigma > 0 ? [`${kcal(plan.truthSigma)} on ${plan.steps.at(-1)!.name}`] : []);
+  const { kept } = outcome;
+  const drawn = `(${formatCount(outcome.draws)} draws, ${outcome.generator}, seed ${outcome.seed})`;
+  const keeps = `the plan keeps ${formatPercent(kept.mean, 1)} of the population at ${withUnit(formatTemperature(plan.temperatureK), "K")}`;
+  const sure =
+    errors.length > 0
+      ? `With independent normal errors of ${errors.join(" and ")} ${drawn} ${keeps} (95 % range ${formatPercent(kept.low, 1)} to ${formatPercent(kept.high, 1)}).`
+      : `With the energies as they are ${keeps}.`;
+  const cost = `Estimated cost ${coreHours(outcome.cost)}, ${formatPercent(plan.failRate)} repeats included; ${withUnit(formatHours(outcome.wall), "h")} on ${plural(plan.slots, "slot")} of ${plural(plan.coresPerSlot, "core")}.`;
+  return [...sentences, sure, cost].join(" ");
+}
+
+/** The plan as a table: RFC 4180, one row a step, then the sum. */
+export function planCsv(plan: Plan, startName: string, outcome: PlanOutcome): string {
+  const rows = plan.steps.map((step, s) => {
+    const o = outcome.steps[s]!;
+    return [
+      s + 1,
+      s === 0 ? startName : plan.steps[s - 1]!.name,
+      o.windowKcal,
+      step.name,
+      step.level === null ? "predicted" : "known",
+      o.in.mean,
+      o.carried.mean,
+      o.carried.low,
+      o.carried.high,
+      o.hoursEach,
+      o.cost,
+      o.wall,
+      100 * o.kept.mean,
+      100 * o.kept.low,
+      100 * o.kept.high,
+    ];
+  });
+  const { kept } = outcome;
+  const sum = ["", "together", null, "", "", null, null, null, null, null, outcome.cost, outcome.wall];
+  return toCsv(
+    [
+      "step",
+      "level before",
+      "window [kcal/mol]",
+      "level",
+      "energies",
+      "in",
+      "carried",
+      "carried at 2.5 %",
+      "carried at 97.5 %",
+      "each [core hours]",
+      "cost [core hours]",
+      "waiting [h]",
+      "kept [%]",
+      "kept at 2.5 % [%]",
+      "kept at 97.5 % [%]",
+    ],
+    [...rows, [...sum, 100 * kept.mean, 100 * kept.low, 100 * kept.high]],
+  );
+}
