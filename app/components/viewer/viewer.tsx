@@ -2,6 +2,7 @@ import { type ReactNode, useMemo, useRef, useState } from "react";
 import { Checkbox } from "~/components/ui/checkbox";
 import { DepthKey } from "~/components/ui/depth-key";
 import type { HydrogenMode, ViewMode } from "~/lib/url-state";
+import type { Ghost } from "~/lib/view/ghost";
 import { pickText, viewMarks } from "~/lib/view/marks";
 import { togglePick } from "~/lib/view/read-picks";
 import type { ViewConformer } from "~/lib/view/scene";
@@ -35,6 +36,8 @@ export interface ViewerProps {
   onMode(mode: ViewMode): void;
   onHydrogens(hydrogens: HydrogenMode): void;
   caption: { strong: string; rest: string };
+  /** A structure from outside, dashed over the first conformer. */
+  ghost?: Ghost;
   /** What the pick measures; the first belongs to the first selected conformer and stands in the picture. */
   measures: readonly { label: string; text: string }[];
   /** Of the picture that is saved; the caption when absent. */
@@ -48,7 +51,7 @@ export interface ViewerProps {
  * is no WebGL; it can be turned, zoomed and picked in like the canvas.
  */
 export function Viewer(props: ViewerProps) {
-  const { elements, picked, onPick, caption, measures } = props;
+  const { elements, picked, onPick, caption, measures, ghost } = props;
   // Only a picked hydrogen changes what is drawn: other picks must not build the scene again.
   const always = useStable(picked.filter((atom) => elements[atom] === 1));
   const view = useView({ ...props, always });
@@ -61,8 +64,8 @@ export function Viewer(props: ViewerProps) {
   const first = measures[0];
   const text = first ? `${first.label} ${first.text}` : null;
   const drawn = useMemo(
-    () => ({ scene, stage, camera, picked, pickText: text, numbers }),
-    [scene, stage, camera, picked, text, numbers],
+    () => ({ scene, stage, camera, picked, pickText: text, numbers, ghost }),
+    [scene, stage, camera, picked, text, numbers, ghost],
   );
   const marks = useMemo(() => viewMarks({ ...drawn, hovered: gestures.hovered }), [drawn, gestures.hovered]);
   const still = useRef<HTMLDivElement>(null);

@@ -2,6 +2,7 @@ import { atomName } from "../chem/elements.ts";
 import { formatPercent } from "../format.ts";
 import { formatMeasure, measureKind, measureLabel, measureValue } from "../measure/measure.ts";
 import type { Camera } from "./camera.ts";
+import { type Ghost, ghostMarks } from "./ghost.ts";
 import { boxOnLeader, type Spot } from "./leader.ts";
 import type { Mark } from "./mark.ts";
 import type { Figure, Scene } from "./scene.ts";
@@ -20,6 +21,8 @@ export interface MarkInput {
   numbers: boolean;
   /** False leaves the scale bar out. */
   bar?: boolean;
+  /** A structure from outside, over the first figure. */
+  ghost?: Ghost | null;
   /** Atom under the pointer. */
   hovered?: { atom: number; figure: Figure } | null;
 }
@@ -33,6 +36,8 @@ export function viewMarks(input: MarkInput): Mark[] {
     if (place > 0 && scene.mode !== "side") return;
     const cell = cellOf(stage, place);
     const project = projector(stage, camera, cell);
+    if (input.ghost && place === 0)
+      marks.push(...ghostMarks(input.ghost, figure, new Set(scene.shown), project));
     const spot: Spot = { scene, stage, cell, figure, at: (atom) => project(figure.positions, atom) };
     if (input.numbers) marks.push(...numberMarks(spot, input.picked));
     marks.push(...changeMarks(spot), ...pickMarks(spot, input, place));

@@ -13,7 +13,7 @@ import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import type { OutsideData } from "./outside-data.ts";
 import { outsideEnergy } from "./outside-energy.ts";
-import { OUTSIDE_BYTES, readOutside } from "./read-outside.server.ts";
+import { OUTSIDE_BYTES, type ReadOutside, readOutside } from "./read-outside.server.ts";
 
 /** More than these beside one ensemble are a screening, not a comparison. */
 const MOST_STRUCTURES = 100;
@@ -38,8 +38,8 @@ async function* bounded(source: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8
 }
 
 /**
- * Lays a structure from outside beside an ensemble. Fields of the form come before its one file: `name`, `level` ("auto",
- * "none" or an id) and `energy` as typed. It takes no part in any computation of the ensemble.
+ * Lays a structure from outside beside an ensemble: one `file`, and the fields `name`, `level` ("auto", "none" or an id)
+ * and `energy` as typed. It takes no part in any computation of the ensemble.
  *
  * @returns id of the structure
  * @throws DomainError invalid in words for another molecule, an unreadable file or an energy that is not there; conflict
@@ -55,7 +55,7 @@ export async function addOutside(options: {
   const store = new FileStore(grant.teamId);
   try {
     const fields = new Map<string, string>();
-    let taken: { file: string; data: OutsideData } | null = null;
+    let taken: { file: string; read: ReadOutside } | null = null;
     for await (const part of form.parts()) {
       if (part.kind === "field") {
         fields.set(part.name, part.value);
@@ -66,12 +66,13 @@ export async function addOutside(options: {
       if (file === "") throw invalid("file", "Choose a file: a crystal or bound pose as XYZ or SDF.");
       const writer = await store.begin(file);
       const bytes = store.keep(file, bounded(fileBytes(part.data)), writer);
-      taken = { file, data: await dataOf(grant.ensembleId, file, bytes, fields) };
+      taken = { file, read: await readOutside(file, bytes) };
       // A reader may have had enough before the end; what is kept is the whole file.
       for await (const _ of bytes);
     }
     if (taken === null) throw invalid("file", "Choose a file: a crystal or bound pose as XYZ or SDF.");
-    const { file, data } = taken;
+    const { file } = taken;
+    const data = await dataOf(grant.ensembleId, taken.read, fields);
     const asked = fields.get("name")?.trim() ?? "";
     const name = (asked === "" ? file : escapeControls(asked)).slice(0, 200);
     const id = newId();
@@ -108,8 +109,7 @@ export async function addOutside(options: {
 
 async function dataOf(
   ensembleId: string,
-  file: string,
-  bytes: AsyncIterable<Uint8Array>,
+  { frame, bonds, remarks }: ReadOutside,
   fields: ReadonlyMap<string, string>,
 ): Promise<OutsideData> {
   const rows = await db
@@ -123,7 +123,6 @@ async function dataOf(
     .from(columns)
     .where(and(eq(columns.ensembleId, ensembleId), eq(columns.kind, "energy")))
     .orderBy(columns.ordinal);
-  const { frame, bonds, remarks } = await readOutside(file, bytes);
   const mapping = mapOutside(graph, { elements: frame.elements, bonds });
   if ("refused" in mapping) throw invalid("file", mapping.refused);
   const energy = outsideEnergy(frame, levels, {
