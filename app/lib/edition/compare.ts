@@ -49,6 +49,7 @@ export type Comparable = Pick<
 
 /** Populations nearer than this print alike. */
 const SAME_POPULATION = 5e-4;
+const UNCHANGED = "populations unchanged";
 
 /**
  * What changed from one edition to a later one, in words and numbers. Frames keep their numbers for good, so conformers are
@@ -66,7 +67,8 @@ export function compareEditions(before: Comparable, after: Comparable): EditionC
     heldWords(before, after),
     populationWords(before, after, conformers),
   ].filter((word) => word !== null);
-  return { words: words.length > 0 ? words : ["nothing changed"], changes, conformers };
+  const nothing = words.every((word) => word === UNCHANGED);
+  return { words: nothing ? ["nothing changed"] : words, changes, conformers };
 }
 
 /** The words on a first edition, which nothing stands before. */
@@ -151,7 +153,7 @@ function populationWords(
   const change = (one: ComparedConformer) =>
     Math.abs((one.populationAfter ?? 0) - (one.populationBefore ?? 0));
   for (const one of conformers) if (largest === null || change(one) > change(largest)) largest = one;
-  if (largest === null || change(largest) < SAME_POPULATION) return "populations unchanged";
+  if (largest === null || change(largest) < SAME_POPULATION) return UNCHANGED;
   const from = formatPercent(largest.populationBefore ?? 0, 1);
   const to = formatPercent(largest.populationAfter ?? 0, 1);
   return `largest change of a population: frame ${largest.frame} from ${from} to ${to}`;
