@@ -78,6 +78,11 @@ const schema = z
     API_UPLOADS_PER_MINUTE: count(240),
     /** Calls without a valid token, an address. */
     ANONYMOUS_CALLS_PER_MINUTE: count(600),
+    /** Seconds that a small body may take in all. */
+    SMALL_BODY_SECONDS: count(30),
+    /** Least bytes of an upload in each span of so many seconds: about a kilobyte a second. */
+    SLOW_UPLOAD_SECONDS: count(60),
+    SLOW_UPLOAD_BYTES: count(65_536, 0),
     /** How many proxies of ours stand in front: 0 takes the peer's address, 1 the last of X-Forwarded-For, ... */
     TRUST_PROXY: count(0, 0, 10),
     /** 0 means one less than the machine has processors, at least 1. */

@@ -16,6 +16,8 @@ let base = "";
 let port = 0;
 let handle: Handle;
 let trusted = 0;
+/** Looks at senders, which the server would take after each span of time. */
+let looks: { ms: number; run: () => void }[] = [];
 
 beforeEach(async () => {
   folder = mkdtempSync(path.join(os.tmpdir(), "lowlying-serve-"));
@@ -31,14 +33,27 @@ beforeEach(async () => {
       hops > 0 ? (forwarded ?? peer) : peer,
     makeContext: (address: string) => ({ address }),
     plainHeaders: () => ({ "x-content-type-options": "nosniff" }),
-    env: () => ({ TRUST_PROXY: trusted }),
+    env: () => ({
+      TRUST_PROXY: trusted,
+      SMALL_BODY_SECONDS: 30,
+      SLOW_UPLOAD_SECONDS: 60,
+      SLOW_UPLOAD_BYTES: 1000,
+    }),
     log: { error: () => {} },
   };
   frame = makeServer({
     application,
     handle: (request: Request, context: { address: string }) => handle(request, context),
     staticFolder: folder,
+    every: (ms: number, run: () => void) => {
+      const look = { ms, run };
+      looks.push(look);
+      return () => {
+        looks = looks.filter((one) => one !== look);
+      };
+    },
   });
+  looks = [];
   await frame.listen(0, "127.0.0.1");
   port = (frame.server.address() as AddressInfo).port;
   base = `http://127.0.0.1:${port}`;
@@ -329,6 +344,108 @@ describe("bodies", () => {
     expect(await post("/small", 1001)).toBe("413 over 1000");
     expect(await post("/small", 5_000_000)).toBe("413 over 1000");
     expect(await post("/upload", 5_000_000)).toBe("200 5000000");
+  });
+});
+
+describe("slow senders", () => {
+  /** Waits for what the server does by itself, without a clock. */
+  const until = (done: () => boolean) =>
+    new Promise<void>((resolve) => {
+      const look = () => (done() ? resolve() : setImmediate(look));
+      look();
+    });
+  /** An application that reads the body and says when a piece came. */
+  const reading = () => {
+    const state = { bytes: 0, failed: false };
+    handle = async (request) => {
+      try {
+        for await (const chunk of request.body ?? []) state.bytes += chunk.length;
+      } catch {
+        state.failed = true;
+      }
+      return new Response("read");
+    };
+    return state;
+  };
+
+  it("of files are cut after a span without enough bytes, and told", async () => {
+    const seen = reading();
+    const slow = slowPost("/upload", 100_000);
+    slow.socket.write("x");
+    await until(() => seen.bytes === 1);
+    expect(looks.map(({ ms }) => ms)).toEqual([60_000]);
+    looks[0]?.run();
+    const text = await slow.closed;
+    expect(text).toMatch(/^HTTP\/1\.1 408/);
+    expect(text).toContain("application/problem+json");
+    expect(text).toContain("Less than 1000 bytes came within 60 s.");
+    expect(text).toContain("x-content-type-options: nosniff");
+    await until(() => seen.failed);
+    expect(looks).toEqual([]);
+  });
+
+  it("of files go on while enough comes", async () => {
+    const seen = reading();
+    const open = slowPost("/upload", 3_000);
+    for (let sent = 1_000; sent <= 2_000; sent += 1_000) {
+      open.socket.write("y".repeat(1_000));
+      await until(() => seen.bytes === sent);
+      looks[0]?.run();
+    }
+    open.socket.write("y".repeat(1_000));
+    await until(() => open.text().includes("read"));
+    expect(open.text()).toMatch(/^HTTP\/1\.1 200/);
+    expect(looks).toEqual([]);
+    open.socket.destroy();
+  });
+
+  it("are not blamed while the application is the one that waits", async () => {
+    let go: () => void = () => {};
+    const gate = new Promise<void>((resolve) => {
+      go = resolve;
+    });
+    let begun = false;
+    handle = async (request) => {
+      begun = true;
+      await gate;
+      return new Response(`read ${(await request.text()).length}`);
+    };
+    const open = slowPost("/upload", 300_000);
+    open.socket.write("z".repeat(200_000));
+    await until(() => begun && looks.length === 1 && open.socket.bytesWritten > 150_000);
+    const [look] = looks;
+    for (let k = 0; k < 5; k++) {
+      look?.run();
+      await new Promise((resolve) => setImmediate(resolve));
+    }
+    go();
+    open.socket.write("z".repeat(100_000));
+    await until(() => open.text().includes("read"));
+    expect(open.text()).toContain("read 300000");
+    open.socket.destroy();
+  });
+
+  it("of small bodies have a time in all", async () => {
+    const seen = reading();
+    const slow = slowPost("/small", 900);
+    slow.socket.write("x".repeat(800));
+    await until(() => seen.bytes === 800);
+    expect(looks.map(({ ms }) => ms)).toEqual([30_000]);
+    looks[0]?.run();
+    const text = await slow.closed;
+    expect(text).toMatch(/^HTTP\/1\.1 408/);
+    expect(text).toContain("did not come within 30 s");
+  });
+
+  it("do not stand in the way of others", async () => {
+    reading();
+    const slow = Array.from({ length: 60 }, () => slowPost("/upload", 100_000));
+    for (const { socket } of slow) socket.write("x");
+    await until(() => looks.length === slow.length);
+    const answer = await fetch(`${base}/upload`, { method: "POST", body: "quick" });
+    expect([answer.status, await answer.text()]).toEqual([200, "read"]);
+    for (const { socket } of slow) socket.destroy();
+    await Promise.all(slow.map(({ closed }) => closed));
   });
 });
 

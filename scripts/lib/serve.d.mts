@@ -8,11 +8,17 @@ export function makeServer<Context>(options: {
     clientAddress(peer: string, forwarded: string | undefined, trusted: number): string;
     makeContext(address: string): Context;
     plainHeaders(): Record<string, string>;
-    env(): { TRUST_PROXY: number };
+    env(): {
+      TRUST_PROXY: number;
+      SMALL_BODY_SECONDS: number;
+      SLOW_UPLOAD_SECONDS: number;
+      SLOW_UPLOAD_BYTES: number;
+    };
     log: { error(fields: object, message: string): void };
   };
   handle(request: Request, context: Context): Promise<Response>;
   staticFolder: string | null;
+  every?(ms: number, run: () => void): () => void;
 }): {
   server: Server;
   openRequests(): number;

@@ -10,20 +10,21 @@ import { loadStaticFiles, sendStatic } from "./static-files.mjs";
 const DRAIN_BYTES = 2 * 2 ** 30;
 const DRAIN_MS = 120_000;
 const HEADERS_MS = 15_000;
-const SMALL_BODY_MS = 30_000;
 const REQUEST_MS = 30 * 60_000;
 const KEEP_ALIVE_MS = 20_000;
-/** A sender of files must move at least one chunk in this time. */
-const UPLOAD_IDLE_MS = 60_000;
 
 const SENDS_NOTHING = new Set(["GET", "HEAD"]);
 const METHODS = new Set(["GET", "HEAD", "POST", "PUT", "PATCH", "DELETE", "OPTIONS"]);
+
+/** Bytes of a body that were taken so far, whoever took them. */
+const taken = new WeakMap();
 
 /** Chunks of a body, counted. Leaving early must not cut the connection: the answer still goes over it. */
 async function* counted(incoming, limit, tooLarge) {
   let bytes = 0;
   for await (const chunk of incoming.iterator({ destroyOnReturn: false })) {
     bytes += chunk.length;
+    taken.set(incoming, bytes);
     if (limit !== null && bytes > limit) throw tooLarge(limit);
     yield chunk;
   }
@@ -67,6 +68,7 @@ function drain(incoming) {
     };
     incoming.on("data", (chunk) => {
       bytes += chunk.length;
+      taken.set(incoming, (taken.get(incoming) ?? 0) + chunk.length);
       if (bytes > DRAIN_BYTES) incoming.destroy();
     });
     for (const event of ["end", "close", "error"]) incoming.once(event, done);
@@ -100,20 +102,56 @@ function sendBody(answer, packer, response) {
   });
 }
 
-/** Cuts senders that hold a connection without sending: small bodies in all, uploads between two chunks. */
-function watchSender(incoming, application) {
+/** Tells a sender that was too slow, and ends the connection. */
+function cutSlow(incoming, response, headers, words) {
+  if (incoming.complete || incoming.destroyed) return;
+  const leave = () => incoming.destroy();
+  if (response.headersSent) return leave();
+  const problem = {
+    type: "tag:lowlying.example,2026:slow",
+    title: "Sent too slowly",
+    status: 408,
+    detail: `${words} Nothing was stored; send it again.`,
+  };
+  response.once("finish", leave);
+  response.once("close", leave);
+  response
+    .writeHead(408, {
+      ...headers,
+      "content-type": "application/problem+json; charset=utf-8",
+      "cache-control": "no-store",
+      connection: "close",
+    })
+    .end(JSON.stringify(problem));
+}
+
+/**
+ * Cuts senders that hold a connection: small bodies have a time in all, uploads a least number of bytes in each span of
+ * time. A span in which the application has not taken what is here already is not the sender's fault.
+ */
+function watchSender(incoming, response, { application, headers, every }) {
   if (SENDS_NOTHING.has(incoming.method)) return;
   const small = application.bodyLimit(incoming.url.split("?", 1)[0]) !== null;
-  const cut = () => {
-    if (!incoming.complete) incoming.destroy();
+  const settings = application.env();
+  const seconds = small ? settings.SMALL_BODY_SECONDS : settings.SLOW_UPLOAD_SECONDS;
+  const least = settings.SLOW_UPLOAD_BYTES;
+  let before = 0;
+  const look = () => {
+    const bytes = taken.get(incoming) ?? 0;
+    const came = bytes - before;
+    before = bytes;
+    if (small) return cutSlow(incoming, response, headers, `The body did not come within ${seconds} s.`);
+    if (came >= least || incoming.readableLength > 0) return;
+    cutSlow(incoming, response, headers, `Less than ${least} bytes came within ${seconds} s.`);
   };
-  if (small) {
-    const timer = setTimeout(cut, SMALL_BODY_MS);
-    for (const event of ["end", "close"]) incoming.once(event, () => clearTimeout(timer));
-    return;
-  }
-  incoming.setTimeout(UPLOAD_IDLE_MS, cut);
-  incoming.once("end", () => incoming.setTimeout(0));
+  const stop = every(seconds * 1000, look);
+  for (const event of ["end", "close"]) incoming.once(event, stop);
+}
+
+/** Calls again and again until it is stopped; never keeps the process alive. */
+function everySpan(ms, run) {
+  const timer = setInterval(run, ms).unref();
+  return () => clearInterval(timer);
 }
 
 function plainAnswer(response, status, text, headers) {
@@ -137,9 +175,10 @@ function isReadable(address) {
  * @param options.application what the build exports for its surroundings
  * @param options.handle takes a Request and a context, gives a Response
  * @param options.staticFolder built assets, or null where another handler sends them
+ * @param options.every looks at senders of bodies after each span of milliseconds, until the function it returns is called
  * @param options.before an optional handler that sees every request first (development)
  */
-export function makeServer({ application, handle, staticFolder, before }) {
+export function makeServer({ application, handle, staticFolder, before, every = everySpan }) {
   const { log, env } = application;
   const files = staticFolder === null ? new Map() : loadStaticFiles(staticFolder);
   const headers = application.plainHeaders();
@@ -150,7 +189,7 @@ export function makeServer({ application, handle, staticFolder, before }) {
       return plainAnswer(response, 405, "This method is not known here.", headers);
     if (!isReadable(incoming.url)) return plainAnswer(response, 400, "This address cannot be read.", headers);
     if (await sendStatic(files, incoming, response, headers)) return;
-    watchSender(incoming, application);
+    watchSender(incoming, response, { application, headers, every });
     const leaving = new AbortController();
     response.once("close", () => {
       if (!response.writableFinished) leaving.abort();
@@ -165,7 +204,7 @@ export function makeServer({ application, handle, staticFolder, before }) {
       application.makeContext(address),
     );
     await drain(incoming);
-    if (response.destroyed) return void given.body?.cancel();
+    if (response.destroyed || response.headersSent) return void given.body?.cancel();
     const { headers: head, packer } = packing(incoming, given);
     writeHead(response, given, head, state.closing);
     await sendBody(given, packer, response);
