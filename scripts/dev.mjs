@@ -1,5 +1,6 @@
 // `npm run dev`: the database of .data, and the application from its sources, reloaded as they change.
-import { loadSettings, needPort, prepare } from "./lib/prepare.mjs";
+import { noteAddress } from "./lib/address.mjs";
+import { dataFolder, loadSettings, needPort, prepare } from "./lib/prepare.mjs";
 import { endRunning, ROOT, StartError } from "./lib/processes.mjs";
 import { makeServer } from "./lib/serve.mjs";
 
@@ -96,6 +97,7 @@ async function main() {
   state.http.server.on("upgrade", (...upgrade) => channel.emit("upgrade", ...upgrade));
   const { HOST, PORT, APP_ORIGIN } = application.env();
   await state.http.listen(PORT, HOST);
+  noteAddress(dataFolder(), APP_ORIGIN);
   if (demo) say(`Demo sign-in: ${demo.email} / ${demo.password}`);
   say(`Lowlying: ${APP_ORIGIN}`);
 }

@@ -1,8 +1,9 @@
 import { readFileSync } from "node:fs";
 import path from "node:path";
 import { pathToFileURL } from "node:url";
+import { noteAddress } from "./address.mjs";
 import { buildPlaces, needBuild } from "./build.mjs";
-import { loadSettings, needPort, portTaken, prepare } from "./prepare.mjs";
+import { dataFolder, loadSettings, needPort, portTaken, prepare } from "./prepare.mjs";
 import { endRunning, StartError } from "./processes.mjs";
 import { makeServer } from "./serve.mjs";
 
@@ -59,6 +60,7 @@ async function main() {
   await state.http.listen(PORT, HOST).catch((error) => {
     throw error.code === "EADDRINUSE" ? portTaken(PORT, HOST) : error;
   });
+  noteAddress(dataFolder(), APP_ORIGIN);
   state.watch = database?.keepAlive(application.log);
   const { version } = JSON.parse(readFileSync("package.json", "utf8"));
   say(`Lowlying ${version} is ready. Ctrl-C stops it.`);
