@@ -32,6 +32,8 @@ export default [
     route("distinct-set", "routes/workbench/distinct-set.tsx"),
     route("populations", "routes/workbench/populations.tsx"),
     route("levels", "routes/workbench/levels.tsx"),
+    route("averages", "routes/workbench/averages.tsx"),
+    route("trust", "routes/workbench/trust.tsx"),
     route("hand-over", "routes/workbench/hand-over.tsx"),
     route("logbook", "routes/workbench/logbook.tsx"),
   ]),

@@ -43,6 +43,8 @@ export interface FlatDrawing {
   /** Corners of filled wedges, as point lists. */
   wedges: string[];
   labels: FlatLabel[];
+  /** Where each atom lies, in the order given: for numbers and rings beside the drawing. */
+  points: { x: number; y: number }[];
 }
 
 const LETTER = 7;
@@ -79,6 +81,7 @@ export function flatLayout(
     lines,
     wedges,
     labels: labels.filter((label) => label !== null),
+    points: placed.points,
   };
 }
 

@@ -1,4 +1,6 @@
-import { formatCount, formatTemperature, plural, withUnit } from "../format.ts";
+import { formatCount, formatPercent, formatTemperature, plural, withUnit } from "../format.ts";
+import type { SiftResult } from "../recipe/result.ts";
+import { samplingCoverage } from "../trust/sampling-coverage.ts";
 import type { EnsembleView, SiftView } from "../views.ts";
 
 export interface StationView {
@@ -35,9 +37,24 @@ export function stations(ensemble: EnsembleView, sift: SiftView | null, temperat
         : ({ figure: "no energies", state: "todo" } as const)),
     },
     { path: "levels", name: "Levels", ...levelsStation(ensemble) },
+    {
+      path: "averages",
+      name: "Averages",
+      ...(ensemble.properties === 0
+        ? ({ figure: "no property", state: "todo" } as const)
+        : after(plural(ensemble.properties, "property", "properties"))),
+    },
+    { path: "trust", name: "Trust", ...trustStation(ready, waits) },
     { path: "hand-over", name: "Hand-over", ...after("CSV, XYZ, JSON") },
     { path: "logbook", name: "Logbook", figure: "who did what", state: "done" },
   ];
+}
+
+function trustStation(ready: SiftResult | null, waits: string): Pick<StationView, "figure" | "state"> {
+  const coverage = samplingCoverage((ready?.kept ?? []).map(({ found }) => found));
+  return coverage === null
+    ? { figure: waits, state: "todo" }
+    : { figure: `coverage ${formatPercent(coverage.coverage)}`, state: "done" };
 }
 
 function levelsStation(ensemble: EnsembleView): Pick<StationView, "figure" | "state"> {

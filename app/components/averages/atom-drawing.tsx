@@ -1,0 +1,142 @@
+import { useEffect, useState } from "react";
+import { symbolOf } from "~/lib/chem/elements";
+import { type FlatDrawing, flatLayout } from "~/lib/workbench/flat-layout";
+
+const BOX = { width: 300, height: 190 };
+/** A drawing of this size would be a grey patch. */
+const MAX_HEAVY = 60;
+const RING = 8;
+
+interface Numbered extends FlatDrawing {
+  /** Atom (from 0) at each point of the drawing. */
+  atoms: number[];
+}
+
+/** The flat drawing with the numbers of its atoms; those looked at are ringed. Nothing where it cannot be drawn. */
+export function AtomDrawing({
+  elements,
+  bonds,
+  positions,
+  table,
+  numbers,
+  ringed,
+  name,
+}: {
+  elements: readonly number[];
+  bonds: readonly number[];
+  positions: Float64Array | null;
+  table: { orders: readonly number[]; charges: readonly number[] } | null;
+  /** Atoms (from 0) to be numbered; of a hydrogen its carrier is. */
+  numbers: ReadonlySet<number>;
+  ringed: ReadonlySet<number>;
+  name: string;
+}) {
+  const [drawing, setDrawing] = useState<Numbered | null>(null);
+  const wanted = elements.filter((element) => element > 1).length <= MAX_HEAVY;
+  useEffect(() => {
+    if (!wanted) return;
+    let left = false;
+    import("~/components/workbench/draw-molecule.client")
+      .then(({ drawMolecule }) => {
+        const molecule = left ? null : drawMolecule(elements, bonds, positions, table);
+        if (!molecule || left) return;
+        // Hydrogens are taken off in the drawing and the other atoms keep their order.
+        const heavy = [...elements.keys()].filter((atom) => (elements[atom] ?? 0) > 1);
+        const same =
+          heavy.length === molecule.atoms.length &&
+          heavy.every((atom, k) => elements[atom] === molecule.atoms[k]?.element);
+        if (!same) return;
+        setDrawing({ ...flatLayout(molecule.atoms, molecule.bonds, BOX, symbolOf), atoms: heavy });
+      })
+      // Without its drawing the table says everything it has to say.
+      .catch(() => undefined);
+    return () => {
+      left = true;
+    };
+  }, [wanted, elements, bonds, positions, table]);
+  if (!drawing) return null;
+  const carriers = carriersOf(elements, bonds);
+  const ringedHeavy = new Set([...ringed].map((atom) => carriers.get(atom) ?? atom));
+  const numberedHeavy = new Set([...numbers].map((atom) => carriers.get(atom) ?? atom));
+  const labelled = new Set(drawing.labels.map((label) => `${label.x},${label.y}`));
+  const centre = { x: drawing.width / 2, y: drawing.height / 2 };
+  return (
+    <svg
+      role="img"
+      aria-label={`Flat drawing of ${name} with the numbers of its atoms`}
+      width={drawing.width}
+      height={drawing.height}
+      className="max-w-full overflow-visible"
+      fontSize={12}
+    >
+      <g className="fill-none stroke-ink-2" strokeWidth={1.4} strokeLinecap="round">
+        {drawing.lines.map((line) => (
+          <path
+            key={`${line.x1} ${line.y1} ${line.x2} ${line.y2}`}
+            d={`M${line.x1} ${line.y1}L${line.x2} ${line.y2}`}
+          />
+        ))}
+      </g>
+      <g className="fill-ink-2">
+        {drawing.wedges.map((points) => (
+          <polygon key={points} points={points} />
+        ))}
+      </g>
+      {drawing.labels.map((label) => (
+        <text
+          key={`${label.x} ${label.y}`}
+          x={label.x}
+          y={label.y + 4.2}
+          textAnchor="middle"
+          className="fill-ink-2"
+        >
+          {label.symbol}
+        </text>
+      ))}
+      {drawing.points.map((point, k) => {
+        const atom = drawing.atoms[k] ?? 0;
+        if (!numberedHeavy.has(atom) && !ringedHeavy.has(atom)) return null;
+        const on = ringedHeavy.has(atom);
+        const away = Math.hypot(point.x - centre.x, point.y - centre.y) || 1;
+        const off = labelled.has(`${point.x},${point.y}`) ? 15 : 11;
+        return (
+          <g key={atom}>
+            {on ? (
+              <circle
+                cx={point.x}
+                cy={point.y}
+                r={RING}
+                fill="none"
+                stroke="var(--color-mark)"
+                strokeWidth={2}
+              />
+            ) : null}
+            <text
+              x={point.x + (off * (point.x - centre.x)) / away}
+              y={point.y + (off * (point.y - centre.y)) / away + 4}
+              textAnchor="middle"
+              fill={on ? "var(--color-mark)" : "var(--color-ink-3)"}
+              fontWeight={on ? 600 : 400}
+              stroke="var(--color-paper)"
+              strokeWidth={3}
+              paintOrder="stroke"
+            >
+              {atom + 1}
+            </text>
+          </g>
+        );
+      })}
+    </svg>
+  );
+}
+
+/** The atom that carries each hydrogen. */
+function carriersOf(elements: readonly number[], bonds: readonly number[]): Map<number, number> {
+  const carriers = new Map<number, number>();
+  for (let k = 0; k < bonds.length; k += 2) {
+    const [a, b] = [bonds[k] ?? 0, bonds[k + 1] ?? 0];
+    if (elements[a] === 1) carriers.set(a, b);
+    if (elements[b] === 1) carriers.set(b, a);
+  }
+  return carriers;
+}

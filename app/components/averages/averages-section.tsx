@@ -1,0 +1,241 @@
+import { useMemo } from "react";
+import { href, useLocation } from "react-router";
+import { ButtonLink } from "~/components/ui/button";
+import { Finding, SectionHead } from "~/components/ui/finding";
+import { StatePanel } from "~/components/ui/state-panel";
+import { TextLink } from "~/components/ui/text-link";
+import { OutdatedNote, SectionState } from "~/components/workbench/section-state";
+import { useWorkbench } from "~/components/workbench/workbench-context";
+import type { AveragesView } from "~/lib/averages/averages-view";
+import { averagesFinding } from "~/lib/averages/words";
+import { plural } from "~/lib/format";
+import { AtomTable } from "./atom-table";
+import { AveragesSettings } from "./averages-settings";
+import { ContributionChart } from "./contribution-chart";
+import { PickColumn } from "./pick-column";
+import { PropertyTable } from "./property-table";
+import { RuleCard } from "./rule-card";
+import { type Averaged, type AveragedProperty, contributionsTo, useAverages } from "./use-averages";
+import { useAveragesState } from "./use-averages-state";
+import { useLevelError, useWeighed, type WeighedConformers } from "./use-weighed";
+import { ValueDistribution } from "./value-distribution";
+
+/** What the flask sees: every property averaged by its own rule, with what makes and what moves it. */
+export function AveragesSection({ view }: { view: AveragesView }) {
+  const { result, sift } = useWorkbench();
+  const weighed = useWeighed(view);
+  const error = useLevelError(view, weighed);
+  const averaged = useAverages(view, weighed, error.sigma);
+  return (
+    <section aria-labelledby="section-title">
+      <SectionHead
+        id="section-title"
+        title="Averages"
+        aside={<TextLink to={`${href("/methods")}#averages`}>How this is computed</TextLink>}
+      />
+      {result === null ? (
+        <SectionState />
+      ) : weighed === null || averaged === null ? (
+        <StatePanel title="Nothing weighs these conformers" className="mt-6">
+          <p>
+            {sift?.recipe.level === null
+              ? "This sift ran without energies, in file order. Averages need populations, and populations need energies: sift with a level."
+              : "No conformer of this set has an energy at this level."}
+          </p>
+        </StatePanel>
+      ) : averaged.properties.length === 0 ? (
+        <>
+          <NoProperties />
+          <PickColumn />
+        </>
+      ) : (
+        <Filled view={view} weighed={weighed} error={error} averaged={averaged} />
+      )}
+    </section>
+  );
+}
+
+function NoProperties() {
+  const { ensemble } = useWorkbench();
+  const { search } = useLocation();
+  return (
+    <>
+      <Finding>There is no property to average yet.</Finding>
+      <OutdatedNote />
+      <StatePanel
+        title="What it needs"
+        className="mt-6"
+        actions={
+          ensemble.mayCompute ? (
+            <ButtonLink kind="primary" to={{ pathname: `/ensembles/${ensemble.id}/columns`, search }}>
+              Add a property table
+            </ButtonLink>
+          ) : undefined
+        }
+      >
+        <p>
+          A table with one row a frame and one column a quantity (couplings, shifts, dipole moments,
+          distances), or atoms picked on the structure: two for a distance, three for an angle, four for a
+          torsion or a coupling.
+        </p>
+      </StatePanel>
+    </>
+  );
+}
+
+function Filled({
+  view,
+  weighed,
+  error,
+  averaged,
+}: {
+  view: AveragesView;
+  weighed: WeighedConformers;
+  error: ReturnType<typeof useLevelError>;
+  averaged: Averaged;
+}) {
+  const { temperatureK, state, sift, selected, select, rows, ensemble } = useWorkbench();
+  const [{ property: wanted }, changeAverages] = useAveragesState();
+  const shown = useShown(averaged, weighed, wanted, temperatureK);
+  const chosenFrames = useMemo(() => new Set(selected), [selected]);
+  const order = useMemo(() => rows.map((row) => row.frame), [rows]);
+  const perAtom = useMemo(() => atomGroups(averaged.properties), [averaged.properties]);
+  const mirrorMerged = sift?.recipe.mirror === "merge" && sift.recipe.chirality === "achiral";
+  const csv = csvAddress(view.siftId ?? "", temperatureK, state.weights, error.sigma, weighed.level.id);
+  if (shown === null) return null;
+  const { one, contributions } = shown;
+  const finding = averagesFinding(
+    {
+      property: one.property,
+      average: one.average,
+      mover: contributions.mover && {
+        name: contributions.mover.name,
+        population: contributions.mover.contribution.population,
+        share: contributions.mover.contribution.share,
+        without: contributions.mover.contribution.without,
+      },
+    },
+    averaged.properties,
+    temperatureK,
+  );
+  return (
+    <>
+      <Finding more={finding.second ?? undefined}>{finding.text}</Finding>
+      <OutdatedNote />
+      <AveragesSettings weighed={weighed} error={error} />
+      <p className="mt-3 max-w-[46rem] text-xs text-ink-3">
+        {weighed.weights.reason}
+        {weighed.without > 0
+          ? ` ${plural(weighed.without, "conformer has", "conformers have")} no energy at ${weighed.level.name} and ${weighed.without === 1 ? "takes" : "take"} no part.`
+          : ""}
+      </p>
+      <PropertyTable
+        averaged={averaged}
+        groups={perAtom.map(({ quantity, unit, list }) => ({
+          quantity,
+          unit,
+          groups: list.length,
+          covered: Math.min(...list.map((group) => group.average.covered)),
+        }))}
+        weighed={weighed}
+        sigma={error.sigma}
+        chosen={one.property.id}
+        onChoose={(id) => changeAverages({ property: id })}
+        csv={csv}
+      />
+      {view.total > view.properties.length ? (
+        <p className="mt-2 text-xs text-ink-3">
+          {plural(view.total - view.properties.length, "further property", "further properties")} of this
+          large set stand in the CSV only.
+        </p>
+      ) : null}
+      {one.property.quantity === null ? (
+        <>
+          <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
+            <ContributionChart
+              averaged={one}
+              list={contributions.list}
+              weighed={weighed}
+              selected={chosenFrames}
+              onChoose={(frame) => select(frame, "only", order)}
+            />
+            <ValueDistribution
+              averaged={one}
+              weighed={weighed}
+              populations={averaged.populations}
+              onChoose={(frame, keys) =>
+                select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order)
+              }
+            />
+          </div>
+          {ensemble.mayCompute ? (
+            <RuleCard
+              key={`${one.property.id}-${one.property.rule}`}
+              averaged={one}
+              weighed={weighed}
+              populations={averaged.populations}
+              mirrorMerged={mirrorMerged}
+            />
+          ) : null}
+        </>
+      ) : null}
+      {perAtom.map(({ quantity, list }) => (
+        <AtomTable key={quantity} quantity={quantity} list={list} averaged={averaged} weighed={weighed} />
+      ))}
+      <PickColumn />
+    </>
+  );
+}
+
+/** The property looked at: the one chosen, else the one that a single conformer moves most for its size. */
+function useShown(
+  averaged: Averaged,
+  weighed: WeighedConformers,
+  wanted: string | null,
+  temperatureK: number,
+) {
+  return useMemo(() => {
+    const scalars = averaged.properties.filter(({ property }) => property.quantity === null);
+    const list = scalars.length > 0 ? scalars : averaged.properties;
+    const told = list.map((one) => ({
+      one,
+      contributions: contributionsTo(one, weighed, averaged.populations, temperatureK),
+    }));
+    const chosen = told.find(({ one }) => one.property.id === wanted);
+    if (chosen) return chosen;
+    const moved = ({ one, contributions }: (typeof told)[number]) =>
+      Math.abs(contributions.mover?.change ?? 0) / Math.max(1e-9, Math.abs(one.average.value ?? 1));
+    return told.reduce<(typeof told)[number] | null>(
+      (best, next) => (best === null || moved(next) > moved(best) ? next : best),
+      null,
+    );
+  }, [averaged, weighed, wanted, temperatureK]);
+}
+
+/** Per-atom quantities with one entry a group of equivalent atoms. */
+function atomGroups(properties: readonly AveragedProperty[]) {
+  const quantities = new Map<string, { quantity: string; unit: string | null; list: AveragedProperty[] }>();
+  for (const one of properties) {
+    const { quantity, unit, atoms } = one.property;
+    if (quantity === null || atoms === null) continue;
+    const entry = quantities.get(quantity) ?? { quantity, unit, list: [] };
+    quantities.set(quantity, entry);
+    if (!entry.list.some((other) => other.property.atoms?.[0] === atoms[0])) entry.list.push(one);
+  }
+  for (const entry of quantities.values()) {
+    entry.list.sort((a, b) => (a.property.atoms?.[0] ?? 0) - (b.property.atoms?.[0] ?? 0));
+  }
+  return [...quantities.values()];
+}
+
+function csvAddress(
+  siftId: string,
+  temperatureK: number,
+  weights: string,
+  sigma: number | null,
+  level: string,
+): string {
+  const query = new URLSearchParams({ temperature: String(temperatureK), weights, level });
+  if (sigma !== null) query.set("sigma", String(sigma));
+  return `${href("/files/sifts/:id/averages.csv", { id: siftId })}?${query}`;
+}

@@ -1,0 +1,108 @@
+import { capital, fixed, formatPercent, formatTemperature, pluralWord, withUnit } from "../format.ts";
+import type { Average } from "./average.ts";
+import type { PropertyValues } from "./property-set.ts";
+
+/**
+ * Decimals that a quantity is shown with: as the trade writes it where the unit says, else about four figures.
+ *
+ * @example digitsFor("°", 179.6) // 0; digitsFor("ppm", 127.37) // 2; digitsFor(null, 0.0123) // 4
+ */
+export function digitsFor(unit: string | null, value: number | null): number {
+  if (unit === "°" || unit === "deg") return 0;
+  if (unit === "Å" || unit === "Hz" || unit === "ppm" || unit === "D")
+    return unit === "Å" && (value ?? 9) < 1 ? 3 : 2;
+  const size = Math.abs(value ?? 1);
+  if (size >= 1000) return 0;
+  if (size >= 100) return 1;
+  if (size >= 10) return 2;
+  return size >= 1 || size === 0 ? 3 : 4;
+}
+
+/** A value of a property with its unit. */
+export function valueWords(property: { unit: string | null }, value: number | null): string {
+  return withUnit(fixed(value, digitsFor(property.unit, value)), property.unit ?? "");
+}
+
+export interface AveragesFinding {
+  text: string;
+  second: string | null;
+}
+
+/** One property with what moves it, for the sentence. */
+export interface Told {
+  property: PropertyValues;
+  average: Average;
+  /** Conformer that moves it most. */
+  mover: { name: string; population: number; share: number | null; without: number | null } | null;
+}
+
+/**
+ * What the section says first: the property looked at, and the conformer that makes it; then how many properties there
+ * are and what is not covered.
+ */
+export function averagesFinding(
+  told: Told,
+  all: readonly { property: PropertyValues; average: Average }[],
+  temperatureK: number,
+): AveragesFinding {
+  const { property, average, mover } = told;
+  return {
+    text: [headline(property, average, temperatureK), mover ? moverWords(told) : null]
+      .filter(Boolean)
+      .join(" "),
+    second: coverageWords(all),
+  };
+}
+
+function headline(property: PropertyValues, average: Average, temperatureK: number): string {
+  const at = `at ${withUnit(formatTemperature(temperatureK), "K")}`;
+  if (average.state === "not-covered") {
+    return `${capital(property.name)} is known for ${formatPercent(average.covered, 1)} of the population only and is not averaged.`;
+  }
+  if (average.state === "zero-distance") {
+    return `${capital(property.name)} holds a distance of 0, which no r^-6 or r^-3 can average: look at its table.`;
+  }
+  if (average.value === null) {
+    return `The directions of ${property.name} cancel ${at} (R ${fixed(average.resultant, 2)}): it has a distribution, not a mean.`;
+  }
+  if (average.fixed) {
+    return `${capital(property.name)} is 0, fixed by symmetry: the molecule is achiral, and each shape comes in both hands.`;
+  }
+  const value = valueWords(property, average.value);
+  return property.rule === "r-6"
+    ? `An NOE sees ${property.name} as ${value} ${at}.`
+    : `${capital(property.name)} averages to ${value} ${at}.`;
+}
+
+function moverWords({ property, mover }: Told): string | null {
+  if (mover === null || mover.without === null) return null;
+  const share =
+    mover.share === null
+      ? `with ${formatPercent(mover.population)} of the ensemble`
+      : `${formatPercent(mover.population)} of the ensemble, ${formatPercent(mover.share)} of the average`;
+  return `${mover.name} moves that figure most: ${share}. Without it: ${valueWords(property, mover.without)}.`;
+}
+
+function coverageWords(all: readonly { property: PropertyValues; average: Average }[]): string {
+  const count = `${capital(pluralWord(all.length, "property", "properties"))}${all.length > 1 ? ", each by its own rule" : ""}.`;
+  const partly = all.filter(({ average }) => average.covered < 1 && average.state !== "not-covered");
+  const refused = all.filter(({ average }) => average.state === "not-covered");
+  const parts = [
+    ...partly
+      .slice(0, 3)
+      .map(
+        ({ property, average }) =>
+          `${capital(property.name)} covers ${formatPercent(average.covered, 1)} of the population.`,
+      ),
+    ...refused
+      .slice(0, 3)
+      .map(
+        ({ property, average }) =>
+          `${capital(property.name)} covers ${formatPercent(average.covered, 1)} and is not averaged.`,
+      ),
+  ];
+  const more = Math.max(0, partly.length - 3) + Math.max(0, refused.length - 3);
+  return [count, ...parts, more > 0 ? `${more} more lack values; the table says which.` : null]
+    .filter(Boolean)
+    .join(" ");
+}
