@@ -13,12 +13,22 @@ const json = (schema: z.ZodType, description: string) => ({
 });
 const body = (schema: z.ZodType) => ({ required: true, content: { "application/json": { schema } } });
 
+/** What every call may answer. */
 const REFUSALS = {
   "401": problem("No valid token"),
   "403": problem("The token or its user may not do this"),
   "404": problem("Does not exist, or no access to it"),
+  "405": problem("Another method; Allow says which are known here"),
   "422": problem("Not as it should be; errors[] names field, file, frame or line"),
   "429": problem("Too many calls; Retry-After says when to come back"),
+};
+
+/** What calls with a body may answer beside that. */
+const BODY_REFUSALS = {
+  "400": problem("The body does not parse"),
+  "408": problem("The body came too slowly"),
+  "413": problem("More bytes than the limit"),
+  "415": problem("Another content type than the call takes"),
 };
 
 const idParam = z
@@ -32,7 +42,13 @@ function call(
   summary: string,
   operation: Omit<ZodOpenApiOperationObject, "operationId" | "summary">,
 ): ZodOpenApiOperationObject {
-  return { operationId, summary, ...operation, responses: { ...operation.responses, ...REFUSALS } };
+  const ofBody = operation.requestBody === undefined ? {} : BODY_REFUSALS;
+  return {
+    operationId,
+    summary,
+    ...operation,
+    responses: { ...operation.responses, ...REFUSALS, ...ofBody },
+  };
 }
 
 /** A form with files beside its fields. */
@@ -66,8 +82,6 @@ const ensembles = {
           "The same bytes with the same answers came before: the same ensemble",
         ),
         "409": problem("The same bytes came before with other answers: existing and url say where"),
-        "413": problem("More bytes than the limit"),
-        "415": problem("No multipart/form-data"),
       },
     }),
     get: call("listEnsembles", "List ensembles, newest first", {
@@ -89,8 +103,6 @@ const ensembles = {
         "201": json(api.ensembleSchema, "The ensemble with the frames of the batch, numbered on"),
         "200": json(api.ensembleSchema, "The same bytes came before: nothing was added"),
         "409": problem("Questions are open, or the same bytes came before with other answers"),
-        "413": problem("More bytes than the limit"),
-        "415": problem("No multipart/form-data"),
       },
     }),
   },
@@ -128,6 +140,37 @@ const ensembles = {
       responses: {
         "200": json(api.decisionAnswerSchema, "The frame is held from now on"),
         "409": problem("It is held already"),
+      },
+    }),
+  },
+};
+
+const columnsBody = {
+  required: true,
+  content: {
+    "multipart/form-data": {
+      schema: api.columnFieldsSchema.extend({
+        file: z.string().meta({
+          format: "binary",
+          description:
+            "A table (first column frame or label, every further one a quantity, its unit as name [unit]), or a structure file with the same frames in any order; plain or gzip.",
+        }),
+      }),
+    },
+  },
+};
+
+const columnCalls = {
+  "/ensembles/{id}/columns": {
+    post: call("addColumns", "Add energies or properties from a table or a second structure file", {
+      requestParams: { path },
+      requestBody: columnsBody,
+      responses: {
+        "201": json(api.columnsAnswerSchema, "The columns, with what is to be said of the file"),
+        "200": json(api.columnsPreviewSchema, "With preview=true: what would be kept"),
+        "409": problem("A name is taken; replace=true puts the new numbers in its place"),
+        "413": problem("More bytes or values than the limit"),
+        "415": problem("No multipart/form-data"),
       },
     }),
   },
@@ -201,6 +244,20 @@ const description =
   "Energies are kcal/mol (but for energyUnit and a level's own unit), lengths Å, temperatures K; frames count from 1 in " +
   "file order, on through all files of an upload. A level is given by its id or its name.";
 
+const itself = {
+  "/openapi.json": {
+    get: {
+      operationId: "openapi",
+      summary: "This description; needs no token",
+      security: [],
+      responses: {
+        "200": json(z.looseObject({ openapi: z.string() }), "OpenAPI 3.1"),
+        "429": REFUSALS["429"],
+      },
+    },
+  },
+};
+
 let made: ReturnType<typeof createDocument> | undefined;
 
 /** The API as OpenAPI 3.1, from the schemas that validate. */
@@ -211,7 +268,7 @@ export function openApiDocument(): object {
     servers: [{ url: "/api/v1" }],
     security: [{ token: [] }],
     components: { securitySchemes: { token: { type: "http", scheme: "bearer" } } },
-    paths: { ...ensembles, ...sifts },
+    paths: { ...ensembles, ...columnCalls, ...sifts, ...itself },
   });
   return made;
 }

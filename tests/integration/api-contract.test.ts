@@ -182,11 +182,25 @@ describe("GET /openapi.json", () => {
     expect(document.openapi).toBe("3.1.0");
     const named = Object.keys(document.paths);
     const routes = routeRows()
-      .filter(
-        (row) => row.parentId === "routes/api/layout" && row.path !== "*" && row.path !== "openapi.json",
-      )
+      .filter((row) => row.parentId === "routes/api/layout" && row.path !== "*")
       .map((row) => `/${(row.path ?? "").replace(/:(\w+)/g, "{$1}")}`);
     expect(named.sort()).toEqual(routes.sort());
+  });
+
+  it("names the refusals of every call, and those of bodies where there is one", async () => {
+    const document = JSON.parse(JSON.stringify(openApiDocument()));
+    for (const [path, operations] of Object.entries<
+      Record<string, { responses: object; requestBody?: object }>
+    >(document.paths)) {
+      for (const [method, { responses, requestBody }] of Object.entries(operations)) {
+        const common = path === "/openapi.json" ? ["429"] : ["401", "403", "404", "405", "422", "429"];
+        const ofBody = requestBody === undefined ? [] : ["400", "408", "413", "415"];
+        expect(Object.keys(responses), `${method} ${path}`).toEqual(
+          expect.arrayContaining([...common, ...ofBody]),
+        );
+      }
+    }
+    expect(document.paths["/openapi.json"].get.security).toEqual([]);
   });
 
   it("describes what is sent: references resolve, and an answer has the members that it names", async () => {
