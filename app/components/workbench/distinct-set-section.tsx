@@ -1,6 +1,6 @@
 import { Download } from "lucide-react";
 import { useMemo, useRef, useState } from "react";
-import { href } from "react-router";
+import { href, useLocation } from "react-router";
 import { Button, buttonClass } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
@@ -21,6 +21,7 @@ import { useWorkbench } from "./workbench-context";
 /** Reducing the accepted frames to the shapes that differ, by a recipe that can be moved. */
 export function DistinctSetSection() {
   const { ensemble, sift, result, state, change } = useWorkbench();
+  const { search } = useLocation();
   // One step of history for one gesture: while a thumb is held the later results replace the first.
   const gesture = useRef<"open" | "fresh">("fresh");
   const [before, setBefore] = useState<{ id: string; kept: number; tolerance: number } | null>(null);
@@ -77,7 +78,16 @@ export function DistinctSetSection() {
       <SectionHead
         id="section-title"
         title="Distinct set"
-        aside={<TextLink to={`${href("/methods")}#distinct-set`}>How this is computed</TextLink>}
+        aside={
+          <span className="flex flex-wrap gap-x-4 gap-y-1">
+            {result !== null ? (
+              <TextLink to={`${href("/ensembles/:id/compare", { id: ensemble.id })}${search}`}>
+                Against an outside structure
+              </TextLink>
+            ) : null}
+            <TextLink to={`${href("/methods")}#distinct-set`}>How this is computed</TextLink>
+          </span>
+        }
       />
       {sift === null || result === null || finding === null ? (
         <SectionState start={startButton} />

@@ -207,7 +207,7 @@ function useMeasures({
   );
   // Which frames are overlaid hangs on the populations; while the temperature moves it need not keep up.
   const settled = useDeferredValue(rows);
-  const distances = section === "populations" || section === "distinct-set";
+  const distances = ["populations", "distinct-set", "compare"].includes(section);
   const wanted = useMemo(() => {
     const overlaid = byPopulation(settled)
       .slice(0, MAX_OVERLAID)

@@ -2,6 +2,7 @@ import { ArrowRight, Link2 } from "lucide-react";
 import { type ReactNode, useEffect, useMemo } from "react";
 import { href, useLocation, useNavigation, useRevalidator } from "react-router";
 import { AppShell, pageClass } from "~/components/layout/app-shell";
+import { OutsideViewPanel } from "~/components/outside/outside-view";
 import { Button, ButtonLink } from "~/components/ui/button";
 import { showToast } from "~/components/ui/toast";
 import { hasEnded, useRunningSift } from "~/hooks/use-sift";
@@ -87,7 +88,11 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
         rename={ensemble.mayCompute ? <RenameEnsemble ensemble={ensemble} /> : null}
         actions={<HeaderActions section={section} />}
       />
-      <SectionRail base={base} here={section} stations={stations(ensemble, sift, temperatureK)} />
+      <SectionRail
+        base={base}
+        here={section === "compare" ? "distinct-set" : section}
+        stations={stations(ensemble, sift, temperatureK)}
+      />
       <div
         className={`${pageClass} grid gap-x-7 pt-4 pb-12 sm:pt-6 lg:grid-cols-[20rem_minmax(0,1fr)] xl:grid-cols-[26.25rem_minmax(0,1fr)] xl:gap-x-10 xl:pt-7 xl:pb-16`}
       >
@@ -98,7 +103,7 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
           } ${asks ? "max-lg:order-2 max-lg:mt-9" : ""}`}
         >
           <div className="noscript:hidden">
-            <ViewPanel held={held} />
+            {section === "compare" ? <OutsideViewPanel /> : <ViewPanel held={held} />}
           </div>
           <p className="hidden max-w-read text-ink-3 noscript:block">
             The 3D view needs script. What it measures and what is drawn beside it stands in the tables.

@@ -1,0 +1,105 @@
+import { useEffect, useRef, useState } from "react";
+import { useFetcher } from "react-router";
+import { Button } from "~/components/ui/button";
+import { Field, frameClass, TextField } from "~/components/ui/field";
+import { Note } from "~/components/ui/note";
+import { SelectField } from "~/components/ui/select-field";
+import type { LevelView } from "~/lib/views";
+
+/** What the page's action answers. */
+export interface OutsideAnswerToForm {
+  ok: boolean;
+  /** Id of what was added, or brought back. */
+  id?: string;
+  name?: string;
+  message?: string;
+  fields?: Record<string, string>;
+}
+
+/** A crystal or a bound pose, with its energy where it carries one at a level of the ensemble. */
+export function AddStructure({
+  levels,
+  onAdded,
+}: {
+  levels: readonly LevelView[];
+  onAdded: (id: string) => void;
+}) {
+  const sending = useFetcher<OutsideAnswerToForm>();
+  const [level, setLevel] = useState("auto");
+  const form = useRef<HTMLFormElement>(null);
+  const told = useRef<OutsideAnswerToForm | undefined>(undefined);
+  const { data } = sending;
+  useEffect(() => {
+    if (!data || told.current === data) return;
+    told.current = data;
+    if (data.ok && data.id) {
+      form.current?.reset();
+      setLevel("auto");
+      onAdded(data.id);
+    }
+  }, [data, onAdded]);
+  const busy = sending.state !== "idle";
+  const failed = data && !data.ok ? data : null;
+  const chosen = levels.find(({ id }) => id === level);
+  return (
+    <sending.Form
+      ref={form}
+      method="post"
+      encType="multipart/form-data"
+      className="grid max-w-read gap-4"
+      aria-busy={busy}
+    >
+      <Field id="outside-file" label="Crystal or bound pose, as XYZ or SDF" error={failed?.fields?.file}>
+        <div className={frameClass(Boolean(failed?.fields?.file))}>
+          <input
+            id="outside-file"
+            name="file"
+            type="file"
+            required
+            accept=".xyz,.sdf,.sd,.mol,.gz,chemical/x-xyz,chemical/x-mdl-sdfile"
+            className="min-w-0 flex-1 text-ink file:mr-3 file:rounded-sm file:border file:border-edge file:bg-sheet file:px-2 file:text-ink"
+          />
+        </div>
+      </Field>
+      {levels.length > 0 ? (
+        <div className="grid gap-4 sm:grid-cols-2">
+          <SelectField
+            label="Its energy"
+            name="level"
+            value={level}
+            onChange={(event) => setLevel(event.currentTarget.value)}
+            choices={[
+              { value: "auto", label: "Where the ensemble’s own stand, if there" },
+              { value: "none", label: "It carries none" },
+              ...levels.map(({ id, name }) => ({ value: id, label: `At ${name}` })),
+            ]}
+          />
+          {chosen ? (
+            <TextField
+              label="Typed; empty: read from the file"
+              name="energy"
+              unit={chosen.unit}
+              inputMode="decimal"
+              autoComplete="off"
+              error={failed?.fields?.energy}
+            />
+          ) : null}
+        </div>
+      ) : null}
+      {failed ? (
+        <Note tone="danger">
+          <span role="alert">{failed.message}</span>
+        </Note>
+      ) : null}
+      <p className="text-xs text-ink-3">
+        Any order of atoms; hydrogens may be missing. It is mapped by its bonds. The energy counts only where
+        it was computed at the same level, geometry and all.
+      </p>
+      <div>
+        <Button kind="primary" type="submit" disabled={busy}>
+          {busy ? "Reading" : "Lay it beside the ensemble"}
+        </Button>
+      </div>
+    </sending.Form>
+  );
+}
