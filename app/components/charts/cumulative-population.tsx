@@ -25,7 +25,7 @@ export function CumulativePopulation({
         columns: [
           { name: "window", unit: "kcal/mol", digits: 2 },
           { name: "conformers", digits: 0 },
-          { name: "population within", unit: "%", digits: 2 },
+          { name: "population within", unit: "%", digits: 1 },
         ],
         rows: cumulative.steps.map((step) => [step.energy, step.count, 100 * step.share]),
       }}

@@ -106,6 +106,7 @@ function LadderLayer({
     .sort((a, b) => b.population - a.population)
     .slice(0, NAMED)
     .map((rung) => ({ name: rung.name, x: plot.x(100 * rung.population), y: plot.y(rung.energy) }));
+  const labels = mergeLabels(marks);
   return (
     <g>
       {shownWindow !== null ? <WindowBand plot={plot} windowKcal={shownWindow} outside={outside} /> : null}
@@ -143,8 +144,8 @@ function LadderLayer({
         stroke="var(--color-ink-3)"
         strokeWidth={1}
       />
-      <CurveLabel ladder={ladder} />
-      {mergeLabels(marks).map((label) => (
+      <CurveLabel ladder={ladder} taken={labels} rt={rt < ladder.top ? plot.y(rt) : null} />
+      {labels.map((label) => (
         <RungLabel key={label.names.join()} label={label} right={plot.right} />
       ))}
     </g>
@@ -164,13 +165,34 @@ function RungLabel({ label, right }: { label: PlacedLabel; right: number }) {
   );
 }
 
-/** The curve's name, where it has room: right of its upper part. */
-function CurveLabel({ ladder }: { ladder: Ladder }) {
+/** Places along the curve where its name may stand, as shares of its length, the best first. */
+const CURVE_NAME_AT = [0.72, 0.8, 0.64, 0.56, 0.88, 0.48, 0.4, 0.94];
+/** Least height between the curve's name and another one beside it, px. */
+const CLEAR_PX = 15;
+
+/** The curve's name, where it has room: right of it, at a height where no rung is named. */
+function CurveLabel({
+  ladder,
+  taken,
+  rt,
+}: {
+  ladder: Ladder;
+  taken: readonly PlacedLabel[];
+  /** Height of the thermal energy's line, which is named at the right. */
+  rt: number | null;
+}) {
   const plot = usePlot();
-  const at = ladder.curve.points[Math.round(ladder.curve.points.length * 0.72)];
-  if (!plot || !at) return null;
-  const x = plot.x(100 * at.population);
-  const y = plot.y(at.energy);
+  if (!plot) return null;
+  const { points } = ladder.curve;
+  const places = CURVE_NAME_AT.flatMap((share) => {
+    const at = points[Math.round((points.length - 1) * share)];
+    return at ? [{ x: plot.x(100 * at.population), y: plot.y(at.energy) }] : [];
+  });
+  const clear = (y: number) =>
+    taken.every((label) => Math.abs(label.y - y) > CLEAR_PX) && (rt === null || Math.abs(rt - y) > CLEAR_PX);
+  const place = places.find(({ y }) => clear(y));
+  if (!place) return null;
+  const { x, y } = place;
   return (
     <>
       <path d={`M${x + 3} ${y}H${x + 22}`} stroke="var(--color-ink-3)" strokeWidth={1} />

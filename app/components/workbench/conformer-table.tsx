@@ -201,7 +201,7 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
             })}
             {after > 0 ? <Spacer height={after} /> : null}
           </tbody>
-          <tfoot>
+          <tfoot className="print:table-row-group">
             <SumRow rest={rest} rows={rows} />
           </tfoot>
         </Table>
@@ -255,7 +255,13 @@ function headsOf(measure: MeasureColumn | null, reference: string, weighed: bool
     { name: "degeneracy", label: "Degeneracy", align: "right", className: MID },
     { name: "symmetry", label: "Symmetry", unit: "number", align: "right", className: WIDE },
     { name: "found", label: "Found", unit: "times", align: "right", className: MID },
-    { name: "rmsd", label: `RMSD to ${reference}`, unit: "Å", align: "right", className: WIDE },
+    {
+      name: "rmsd",
+      label: `RMSD to ${reference}`,
+      unit: "Å",
+      align: "right",
+      className: `${WIDE} noscript:hidden`,
+    },
   ];
   if (measure) {
     heads.push({
@@ -370,7 +376,7 @@ const ConformerLine = memo(function ConformerLine({
         <Td align="right" className={MID}>
           {row.found}
         </Td>
-        <Td align="right" className={WIDE}>
+        <Td align="right" className={`${WIDE} noscript:hidden`}>
           {rmsd === undefined && awaited ? <Skeleton className="ml-auto h-3 w-9" /> : rmsdText}
         </Td>
         {measure ? (

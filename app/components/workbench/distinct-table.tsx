@@ -144,7 +144,7 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
             {after > 0 ? <Space height={after} /> : null}
           </tbody>
           {shown < rows.length ? (
-            <tfoot>
+            <tfoot className="print:table-row-group">
               <tr className="border-b border-rule text-ink-2">
                 <Td colSpan={6}>{formatCount(rows.length - shown)} more</Td>
               </tr>

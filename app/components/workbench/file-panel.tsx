@@ -29,7 +29,7 @@ export function FilePanel() {
               </CopyButton>
               {guest ? null : (
                 <a
-                  className={linkClass}
+                  className={`${linkClass} print:hidden`}
                   download
                   href={href("/files/ensembles/:id/sources/:position", {
                     id: ensemble.id,
@@ -44,7 +44,7 @@ export function FilePanel() {
         ))}
       </ul>
       {ensemble.mayCompute ? (
-        <p className="mt-3 text-xs text-ink-3">
+        <p className="mt-3 text-xs text-ink-3 print:hidden">
           Another file?{" "}
           <TextLink to={`${href("/teams/:team", { team: ensemble.team.id })}?series=${ensemble.series.id}`}>
             Drop it on the series

@@ -9,7 +9,7 @@ export function FrameStripFigure({ states }: { states: string }) {
   const waiting = ticks.reduce((sum, tick) => sum + tick.waiting, 0);
   const remarked = ticks.reduce((sum, tick) => sum + tick.remarked, 0);
   return (
-    <figure className="mt-6">
+    <figure className="mt-6 [print-color-adjust:exact]">
       <figcaption className="mb-2 flex flex-wrap items-baseline justify-between gap-x-4 gap-y-1">
         <h3 className="text-sm font-semibold">
           Every frame, in file order

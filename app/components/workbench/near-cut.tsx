@@ -104,6 +104,7 @@ function PairRow({
     <Tr selected={shown}>
       <Td>
         <TextButton
+          printed
           className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
           onClick={() => {
             setLaidOver(frames);
@@ -165,6 +166,7 @@ export function NearestToSelected() {
                 <Tr key={index}>
                   <Td>
                     <TextButton
+                      printed
                       className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
                       onClick={() => {
                         const frames = [reference.frame, row.frame];

@@ -7,6 +7,7 @@ import { MeasureDistribution } from "~/components/charts/measure-distribution";
 import type { Choose } from "~/components/charts/plot";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
+import { Skeleton } from "~/components/ui/skeleton";
 import { TextLink } from "~/components/ui/text-link";
 import { formatCount, plural } from "~/lib/format";
 import { measureHistogram } from "~/lib/measure/histogram";
@@ -114,24 +115,39 @@ function Charts() {
         onChoose={choose}
       />
       <CumulativePopulation cumulative={cumulative} windowKcal={windowKcal} top={ladder.top} />
-      {rows.length > 1 ? (
+      {rows.length > 1 && rmsd === null ? <DistancesAwaited reference={reference?.name ?? "c1"} /> : null}
+      {rows.length > 1 && rmsd !== null ? (
         <EnergyAgainstRmsd
           rows={rows}
-          rmsd={rmsd ?? []}
+          rmsd={rmsd}
           reference={reference?.name ?? "c1"}
           top={ladder.top}
           selected={chosen}
           onChoose={choose}
           note={
-            rmsd === null
-              ? "Distances follow when the structures are here."
-              : measured.size < rows.length
-                ? `Of the ${formatCount(MAX_MEASURED)} lowest conformers.`
-                : undefined
+            measured.size < rows.length ? `Of the ${formatCount(MAX_MEASURED)} lowest conformers.` : undefined
           }
         />
       ) : null}
       <Distribution onChoose={choose} />
+    </div>
+  );
+}
+
+/** In the place of the figure while the structures are on their way and being compared. */
+function DistancesAwaited({ reference }: { reference: string }) {
+  const { coordinates } = useWorkbench();
+  return (
+    <div className="min-w-0 noscript:hidden print:hidden">
+      <h3 className="mb-2 text-sm font-semibold">Energy against RMSD to {reference}</h3>
+      <div className="relative">
+        <Skeleton className="h-80 w-full" />
+        <p role="status" className="appear-late absolute inset-0 content-center text-center text-ink-2">
+          {coordinates.missing > 0
+            ? `${plural(coordinates.missing, "structure")} on the way.`
+            : "Comparing the structures."}
+        </p>
+      </div>
     </div>
   );
 }
@@ -156,7 +172,7 @@ function Distribution({ onChoose }: { onChoose: Choose }) {
   }, [settled, measure]);
   if (!measure || !histogram) {
     return (
-      <div className="min-w-0">
+      <div className="min-w-0 noscript:hidden print:hidden">
         <h3 className="mb-2 text-sm font-semibold">Distance, angle or torsion</h3>
         <p className="max-w-read text-ink-2">
           Pick two, three or four atoms in the view, or name them below it, to read their distance, angle or

@@ -72,7 +72,10 @@ export function ToleranceBlock({
   return (
     <>
       <LiveLine here={here} isShown={isShown} seconds={whole.count?.seconds ?? null} whole={whole} />
-      <div className="mt-6 grid gap-x-10 gap-y-9 xl:grid-cols-2">
+      <p className="mt-4 hidden text-xs text-ink-3 noscript:block">
+        How the count hangs on the tolerance is counted in the browser and needs script.
+      </p>
+      <div className="mt-6 grid gap-x-10 gap-y-9 noscript:hidden xl:grid-cols-2">
         {sift.current && whole.plateau !== null ? (
           <PlateauChart
             counts={whole.plateau.counts}
