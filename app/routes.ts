@@ -30,6 +30,7 @@ export default [
     index("routes/workbench/index.ts"),
     route("intake", "routes/workbench/intake.tsx"),
     route("distinct-set", "routes/workbench/distinct-set.tsx"),
+    route("compare", "routes/workbench/compare.tsx"),
     route("populations", "routes/workbench/populations.tsx"),
     route("levels", "routes/workbench/levels.tsx"),
     route("averages", "routes/workbench/averages.tsx"),
