@@ -291,8 +291,8 @@ function Comparison({
                     name: `Strain of ${structure.name}`,
                     value: withUnit(formatEnergy(strain), "kcal/mol"),
                     raw: strain,
-                    formula:
-                      "energy of the outside structure minus the lowest accepted frame, at the same level",
+                    formula: "energy of the outside structure − energy of the lowest accepted frame",
+                    inputs: [{ label: "level", value: structure.strain?.levelName }],
                   }}
                 />
               </>
