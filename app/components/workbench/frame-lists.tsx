@@ -175,10 +175,10 @@ function HeldEntry({ group }: { group: FrameGroup }) {
         {single && first.releasable && ensemble.mayCompute && !(waits && ensemble.openQuestions > 0) ? (
           <ReleaseFrame ensembleId={ensemble.id} frame={first.number} note={first.note} />
         ) : null}
+        {ensemble.mayCompute && canBeSplitOff(first.holdReason) ? (
+          <SplitOff ensembleId={ensemble.id} frame={first.number} count={frames.length} />
+        ) : null}
       </Acts>
-      {ensemble.mayCompute && canBeSplitOff(first.holdReason) ? (
-        <SplitOff ensembleId={ensemble.id} frame={first.number} count={frames.length} />
-      ) : null}
     </Entry>
   );
 }
@@ -189,7 +189,7 @@ function Acts({ group, children }: { group: FrameGroup; children?: ReactNode }) 
   const shown = frame !== undefined && selected.length === 1 && selected[0] === frame.number;
   if (frame === undefined && !children) return null;
   return (
-    <p className="mt-1 flex flex-wrap gap-4 [&>*]:max-sm:py-2">
+    <div className="mt-1 flex flex-wrap items-center gap-x-4 gap-y-2 [&>button]:max-sm:py-2">
       {frame === undefined ? null : shown ? (
         <span className="text-ink-3">Shown in the view</span>
       ) : (
@@ -198,7 +198,7 @@ function Acts({ group, children }: { group: FrameGroup; children?: ReactNode }) 
         </TextButton>
       )}
       {children}
-    </p>
+    </div>
   );
 }
 

@@ -38,7 +38,7 @@ export function SplitOff({
   const refused = data && !data.ok ? data.message : undefined;
   const these = count === 1 ? "this frame" : `these ${plural(count, "frame")}`;
   return (
-    <fetcher.Form method="post" action={href("/ensembles/:id/intake", { id: ensembleId })} className="mt-2">
+    <fetcher.Form method="post" action={href("/ensembles/:id/intake", { id: ensembleId })}>
       <input type="hidden" name="intent" value="split-off" />
       <input type="hidden" name="frame" value={frame} />
       <Button type="submit" size="sm" aria-busy={state !== "idle"} disabled={state !== "idle"}>
