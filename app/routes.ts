@@ -33,6 +33,7 @@ export default [
     route("compare", "routes/workbench/compare.tsx"),
     route("populations", "routes/workbench/populations.tsx"),
     route("levels", "routes/workbench/levels.tsx"),
+    route("plan", "routes/workbench/plan.tsx"),
     route("averages", "routes/workbench/averages.tsx"),
     route("trust", "routes/workbench/trust.tsx"),
     route("hand-over", "routes/workbench/hand-over.tsx"),

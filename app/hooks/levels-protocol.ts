@@ -1,6 +1,9 @@
 import type { ComparisonInput } from "~/lib/levels/compare";
 import { type ComparisonIntervals, comparisonIntervals } from "~/lib/levels/intervals";
 import { type WindowBand, windowBand } from "~/lib/levels/window-band";
+import type { PlanData } from "~/lib/plan/evaluate";
+import type { Plan } from "~/lib/plan/plan";
+import { type PlansReport, planReport } from "~/lib/plan/report";
 
 /** What the page leaves to a thread of its own: figures by chance, which take seconds for large sets. */
 export interface LevelTasks {
@@ -9,6 +12,7 @@ export interface LevelTasks {
     result: ComparisonIntervals;
   };
   band: { input: Parameters<typeof windowBand>[0]; result: WindowBand };
+  plans: { input: { plans: Plan[]; chosen: number; data: PlanData[] }; result: PlansReport };
 }
 
 export type LevelTaskName = keyof LevelTasks;
@@ -19,6 +23,7 @@ export type LevelTask = {
 const RUN: { [Name in LevelTaskName]: (input: LevelTasks[Name]["input"]) => LevelTasks[Name]["result"] } = {
   intervals: ({ comparison, seed }) => comparisonIntervals(comparison, { seed }),
   band: windowBand,
+  plans: ({ plans, chosen, data }) => planReport(plans, chosen, data),
 };
 
 /** Does a task; the same on the thread and in tests. */

@@ -16,6 +16,7 @@ import { ErrorAgainstEnergy } from "./error-against-energy";
 import { LevelAgainstLevel } from "./level-against-level";
 import { LevelMatrix } from "./level-matrix";
 import { LevelsSettings } from "./levels-settings";
+import { LevelsTabs } from "./levels-tabs";
 import { pairPoints } from "./pair-points";
 import { PopulationAgainstPopulation } from "./population-against-population";
 import { SlopeChart } from "./slope-chart";
@@ -33,11 +34,7 @@ export function LevelsSection({ energies }: { energies: readonly LevelEnergiesVi
   const levels = useLevelData(energies);
   return (
     <section aria-labelledby="section-title">
-      <SectionHead
-        id="section-title"
-        title="Levels"
-        aside={<TextLink to={`${href("/methods")}#levels`}>How this is computed</TextLink>}
-      />
+      <SectionHead id="section-title" title="Levels" aside={<LevelsTabs here="comparison" />} />
       {levels.length < 2 ? <TooFew levels={levels} /> : <Compared levels={levels} />}
     </section>
   );

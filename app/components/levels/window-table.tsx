@@ -1,7 +1,9 @@
+import { href, useLocation } from "react-router";
 import { BlockHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
 import { Skeleton } from "~/components/ui/skeleton";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { TextLink } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { ABSENT, formatCount, formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
 import { type ComparisonIntervals, windowInterval } from "~/lib/levels/intervals";
@@ -19,7 +21,8 @@ export function WindowTable({
   intervals: ComparisonIntervals | null;
   band: WindowBand | null;
 }) {
-  const { state } = useWorkbench();
+  const { ensemble, state } = useWorkbench();
+  const { search } = useLocation();
   const { comparison, steps, window, paired, meeting, level, reference } = found;
   const shares = [...new Set([...comparison.window.map((w) => w.share), window.share, 1])].sort(
     (a, b) => a - b,
@@ -76,7 +79,10 @@ export function WindowTable({
         </tbody>
       </Table>
       <p className="mt-2 max-w-read text-xs text-ink-3">
-        {lowestWords()} {bandWords()}
+        {lowestWords()} {bandWords()}{" "}
+        <TextLink to={{ pathname: href("/ensembles/:id/plan", { id: ensemble.id }), search }}>
+          Make a plan
+        </TextLink>
       </p>
       <Note className="mt-4">
         Best case: a window cannot bring back what the sampler never found, and {reference.name} is taken as

@@ -18,6 +18,9 @@ import { ViewPanel } from "./view-panel";
 import { useWorkbench, WorkbenchProvider } from "./workbench-context";
 import { WorkbenchHeader } from "./workbench-header";
 
+/** Pages that belong to a station of another name. */
+const STATION_OF: Record<string, string> = { compare: "distinct-set", plan: "levels" };
+
 /** Sections whose view folds away below 1024 px: they are read, not looked at. */
 const WITHOUT_VIEW = ["hand-over", "logbook"];
 
@@ -90,7 +93,7 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
       />
       <SectionRail
         base={base}
-        here={section === "compare" ? "distinct-set" : section}
+        here={STATION_OF[section] ?? section}
         stations={stations(ensemble, sift, temperatureK)}
       />
       <div

@@ -154,6 +154,11 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
     }),
   }),
   z.object({ type: z.literal("column-removed"), data: z.object({ id: z.string(), name: z.string() }) }),
+  z.object({
+    type: z.literal("plan-saved"),
+    data: z.object({ id: z.string(), name: z.string(), version: z.number() }),
+  }),
+  z.object({ type: z.literal("plan-removed"), data: z.object({ id: z.string(), name: z.string() }) }),
   z.object({ type: z.literal("column-restored"), data: z.object({ id: z.string(), name: z.string() }) }),
   z.object({
     type: z.literal("edition-frozen"),
@@ -348,6 +353,13 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       };
     case "column-removed":
       return { text: `Removed the column ${entry.data.name}`, detail: null };
+    case "plan-saved":
+      return {
+        text: `Saved the plan ${entry.data.name}`,
+        detail: entry.data.version > 1 ? `version ${entry.data.version}` : null,
+      };
+    case "plan-removed":
+      return { text: `Removed the plan ${entry.data.name}`, detail: null };
     case "column-restored":
       return { text: `Brought the column ${entry.data.name} back`, detail: null };
     case "edition-frozen":

@@ -1,0 +1,137 @@
+import { Plus, X } from "lucide-react";
+import { Button, IconButton } from "~/components/ui/button";
+import { BlockHead } from "~/components/ui/finding";
+import { Table, Td, Th } from "~/components/ui/table";
+import { TextButton } from "~/components/ui/text-link";
+import { ABSENT, capital, countWord, formatCount, formatEnergy, formatPopulation } from "~/lib/format";
+import { marginalCosts } from "~/lib/plan/front";
+import { MAX_ALTERNATIVES, type PlanSet } from "~/lib/plan/plan";
+import type { PlansReport } from "~/lib/plan/report";
+import { formatHours } from "~/lib/plan/words";
+
+/** Plans side by side, at most four; the one at hand is washed in magenta. */
+export function AlternativesTable({
+  set,
+  startName,
+  report,
+  readOnly,
+  onChange,
+}: {
+  set: PlanSet;
+  startName: string;
+  report: PlansReport | null;
+  readOnly: boolean;
+  onChange: (set: PlanSet) => void;
+}) {
+  const { plans, chosen } = set;
+  const outcomes = report?.outcomes ?? null;
+  const deepest = plans.reduce((most, { plan }) => Math.max(most, plan.steps.length), 1);
+  const marginal = outcomes ? marginalCosts(outcomes.map((o) => ({ kept: o.kept.mean, cost: o.cost }))) : [];
+  const row = (label: string, unit: string, cell: (k: number) => string) => ({ label, unit, cell });
+  const rows = [
+    ...Array.from({ length: deepest }, (_, s) => {
+      const before = s === 0 ? startName : (plans[chosen]?.plan.steps[s - 1]?.name ?? `level ${s}`);
+      const name = plans[chosen]?.plan.steps[s]?.name ?? `level ${s + 1}`;
+      return [
+        row(`Window at ${before}`, "kcal/mol", (k) => {
+          const step = outcomes?.[k]?.steps[s];
+          return step ? (step.windowKcal === null ? "all" : formatEnergy(step.windowKcal)) : ABSENT;
+        }),
+        row(`To ${name}`, "structures", (k) => {
+          const step = outcomes?.[k]?.steps[s];
+          return step ? formatCount(Math.round(step.carried.mean)) : ABSENT;
+        }),
+      ];
+    }).flat(),
+    row("Cost", "core hours", (k) => (outcomes?.[k] ? formatHours(outcomes[k].cost) : ABSENT)),
+    row("Waiting", "hours", (k) => (outcomes?.[k] ? formatHours(outcomes[k].wall) : ABSENT)),
+    row("Population kept", "%, expected", (k) => formatPopulation(outcomes?.[k]?.kept.mean)),
+    row("Population lost", "%, expected", (k) => {
+      const kept = outcomes?.[k]?.kept.mean;
+      return formatPopulation(kept === undefined ? null : Math.max(0, 1 - kept));
+    }),
+    row("95 % range of what is kept", "%", (k) => {
+      const kept = outcomes?.[k]?.kept;
+      return kept ? `${formatPopulation(kept.low)} to ${formatPopulation(kept.high)}` : ABSENT;
+    }),
+    row("Lowest kept in", "% of the draws", (k) => formatPopulation(outcomes?.[k]?.lowestKept)),
+    row("Each percent above the last", "core hours", (k) => {
+      const each = marginal[k] ?? null;
+      return each === null ? ABSENT : formatHours(each);
+    }),
+  ];
+  const add = () => {
+    const own = plans[chosen];
+    if (!own) return;
+    const name = ["Second", "Third", "Fourth", "Other"].find((one) => plans.every((p) => p.name !== one));
+    onChange({ ...set, plans: [...plans, { name: name ?? "Other", plan: own.plan }], chosen: plans.length });
+  };
+  const remove = (at: number) => {
+    const left = plans.filter((_, k) => k !== at);
+    onChange({ ...set, plans: left, chosen: Math.min(chosen > at ? chosen - 1 : chosen, left.length - 1) });
+  };
+  return (
+    <section className="mt-9" aria-labelledby="plan-alternatives">
+      <BlockHead
+        id="plan-alternatives"
+        title={plans.length === 1 ? "One plan" : `${capital(countWord(plans.length))} plans side by side`}
+      >
+        {readOnly || plans.length >= MAX_ALTERNATIVES ? null : (
+          <Button size="sm" icon={<Plus aria-hidden="true" />} onClick={add}>
+            Compare another
+          </Button>
+        )}
+      </BlockHead>
+      <div className="overflow-x-auto">
+        <Table aria-labelledby="plan-alternatives">
+          <thead>
+            <tr>
+              <Th>
+                <span className="sr-only">Figure</span>
+              </Th>
+              {plans.map(({ name }, k) => (
+                <Th
+                  key={k}
+                  align="right"
+                  className={k === chosen ? "border-t-3! border-t-mark! bg-mark-wash text-ink!" : ""}
+                >
+                  <span className="inline-flex items-center gap-1">
+                    {name}
+                    {readOnly || plans.length === 1 ? null : (
+                      <IconButton label={`Leave out ${name}`} onClick={() => remove(k)}>
+                        <X aria-hidden="true" />
+                      </IconButton>
+                    )}
+                  </span>
+                  <span className="block font-normal">
+                    {k === chosen ? (
+                      "this plan"
+                    ) : (
+                      <TextButton onClick={() => onChange({ ...set, chosen: k })}>
+                        Take<span className="sr-only"> {name}</span>
+                      </TextButton>
+                    )}
+                  </span>
+                </Th>
+              ))}
+            </tr>
+          </thead>
+          <tbody>
+            {rows.map(({ label, unit, cell }) => (
+              <tr key={label} className="border-b border-rule">
+                <Td wrap>
+                  {label} <span className="text-ink-3">{unit}</span>
+                </Td>
+                {plans.map((_, k) => (
+                  <Td key={k} align="right" className={k === chosen ? "bg-mark-wash" : ""}>
+                    {cell(k)}
+                  </Td>
+                ))}
+              </tr>
+            ))}
+          </tbody>
+        </Table>
+      </div>
+    </section>
+  );
+}

@@ -1,0 +1,234 @@
+import { useMemo, useState } from "react";
+import { href } from "react-router";
+import { chosenLevels } from "~/components/levels/levels-section";
+import { LevelsTabs } from "~/components/levels/levels-tabs";
+import { type LevelData, useLevelData, useMembers } from "~/components/levels/use-comparison";
+import { Badge } from "~/components/ui/badge";
+import { CopyButton } from "~/components/ui/copy-button";
+import { BlockHead, Finding, SectionHead } from "~/components/ui/finding";
+import { Note } from "~/components/ui/note";
+import { Skeleton } from "~/components/ui/skeleton";
+import { StatePanel } from "~/components/ui/state-panel";
+import { TextLink } from "~/components/ui/text-link";
+import { useWorkbench } from "~/components/workbench/workbench-context";
+import { plural } from "~/lib/format";
+import type { LevelEnergiesView, Member } from "~/lib/levels/level-energies";
+import type { Plan, PlanSet } from "~/lib/plan/plan";
+import { firstPlans } from "~/lib/plan/start";
+import { planAssumptions, planFinding, planText } from "~/lib/plan/words";
+import type { SavedPlans } from "~/services/plans/list-plans.server";
+import { AlternativesTable } from "./alternatives-table";
+import { CostChart } from "./cost-chart";
+import { FirstWindowChart } from "./first-window-chart";
+import { PlanSettings } from "./plan-settings";
+import { type OpenPlan, SavePlan } from "./save-plan";
+import { StepsTable } from "./steps-table";
+import { type PlanFigures, usePlanReport } from "./use-plan-report";
+
+/** Plan: which conformers to carry through which levels, what it costs, and what it keeps. */
+export function PlanSection({
+  energies,
+  saved,
+}: {
+  energies: readonly LevelEnergiesView[];
+  saved: readonly SavedPlans[];
+}) {
+  const levels = useLevelData(energies);
+  const { state } = useWorkbench();
+  const { members } = useMembers(levels[0] ?? null);
+  const { level, reference } = chosenLevels(levels, state.compare);
+  return (
+    <section aria-labelledby="section-title">
+      <SectionHead id="section-title" title="Levels: plan" aside={<LevelsTabs here="plan" />} />
+      {level === null || members.length === 0 ? (
+        <StatePanel title="A plan starts from energies" className="mt-6">
+          <p>
+            {members.length === 0
+              ? "No frame is accepted yet: intake says why."
+              : "These frames carry no energies. Bring a level first, then plan which conformers go on to the next."}
+          </p>
+        </StatePanel>
+      ) : (
+        <Planned {...{ levels, members, saved }} first={reference ? [level, reference] : [level]} />
+      )}
+    </section>
+  );
+}
+
+function Planned({
+  levels,
+  members,
+  first,
+  saved,
+}: {
+  levels: readonly LevelData[];
+  members: readonly Member[];
+  /** Levels of a fresh draft. */
+  first: readonly LevelData[];
+  saved: readonly SavedPlans[];
+}) {
+  const { ensemble, sift, state } = useWorkbench();
+  const fresh = () =>
+    firstPlans(first, { sift: sift?.id ?? null, temperatureK: state.temperatureK, n: members.length });
+  const [set, setSet] = useState<PlanSet>(() => saved[0]?.plans ?? fresh());
+  const [open, setOpen] = useState<OpenPlan | null>(() => saved[0] ?? null);
+  const figures = usePlanReport(set, levels, members, ensemble.atoms);
+  const readOnly = !ensemble.mayCompute;
+  const plan = set.plans[set.chosen]?.plan ?? set.plans[0]?.plan;
+  if (!plan) return null;
+  const startLevel = levels.find((one) => one.id === plan.start);
+  const start = startLevel?.name ?? "a level that is gone";
+  const change = (next: Plan) =>
+    setSet({ ...set, plans: set.plans.map((one, k) => (k === set.chosen ? { ...one, plan: next } : one)) });
+  const outcome = figures.report?.outcomes[set.chosen] ?? null;
+  const finding = outcome ? planFinding(plan, start, outcome, figures.report?.front ?? null) : null;
+  return (
+    <>
+      {finding ? (
+        <Finding more={[finding.second, leftWords(figures)].filter(Boolean).join(" ")}>
+          {finding.text}
+        </Finding>
+      ) : (
+        <Finding>
+          {figures.members.length === 0
+            ? "No conformer has the energies of every level in this plan."
+            : `Drawing what ${plural(set.plans.length, "plan")} would keep of ${plural(figures.members.length, "conformer")}.`}
+        </Finding>
+      )}
+      <SavePlan
+        set={set}
+        open={open}
+        saved={saved}
+        readOnly={readOnly}
+        onOpen={(one) => {
+          setSet(one?.plans ?? fresh());
+          setOpen(one);
+        }}
+      />
+      {startLevel === undefined ? (
+        <Note tone="held" className="mt-4">
+          The level that this plan started from is gone. Choose another start.
+        </Note>
+      ) : null}
+      {set.sift !== null && sift !== null && set.sift !== sift.id ? (
+        <Note tone="held" className="mt-4">
+          This plan was saved on another distinct set; its figures are of the one shown now.
+        </Note>
+      ) : null}
+      {readOnly ? null : <PlanSettings plan={plan} onChange={(part) => change({ ...plan, ...part })} />}
+      <StepsTable
+        plan={plan}
+        levels={levels}
+        atoms={ensemble.atoms}
+        conformers={figures.members.length}
+        outcome={outcome}
+        readOnly={readOnly}
+        onChange={change}
+      />
+      <PlanCharts set={set} figures={figures} startName={start} ordinal={startLevel?.ordinal ?? 1} />
+      <AlternativesTable
+        set={set}
+        startName={start}
+        report={figures.report}
+        readOnly={readOnly}
+        onChange={setSet}
+      />
+      {outcome && figures.report ? (
+        <Closing plan={plan} start={start} figures={figures} chosen={set.chosen} atoms={ensemble.atoms} />
+      ) : null}
+    </>
+  );
+}
+
+function leftWords({ left }: PlanFigures): string {
+  return left === 0 ? "" : `${plural(left, "conformer")} without an energy at one of the levels left out.`;
+}
+
+function PlanCharts({
+  set,
+  figures,
+  startName,
+  ordinal,
+}: {
+  set: PlanSet;
+  figures: PlanFigures;
+  startName: string;
+  ordinal: number;
+}) {
+  const plan = set.plans[set.chosen]?.plan;
+  const { report, band } = figures;
+  if (figures.members.length === 0 || !plan) return null;
+  return (
+    <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2" aria-busy={report === null || band === null}>
+      {report ? <CostChart set={set} report={report} /> : <Skeleton className="h-96 w-full" />}
+      {band ? (
+        <FirstWindowChart
+          band={band}
+          windowKcal={report?.outcomes[set.chosen]?.steps[0]?.windowKcal ?? null}
+          startName={startName}
+          ordinal={ordinal}
+          lastName={plan.steps.at(-1)?.name ?? ""}
+        />
+      ) : (
+        <Skeleton className="h-96 w-full" />
+      )}
+    </div>
+  );
+}
+
+/** What is assumed, and the paragraph for the report. */
+function Closing({
+  plan,
+  start,
+  figures,
+  chosen,
+  atoms,
+}: {
+  plan: Plan;
+  start: string;
+  figures: PlanFigures;
+  chosen: number;
+  atoms: number;
+}) {
+  const { report, members } = figures;
+  const outcome = report?.outcomes[chosen];
+  const text = useMemo(
+    () => (outcome ? planText(plan, start, outcome, members.length) : ""),
+    [plan, start, outcome, members.length],
+  );
+  if (!report || !outcome) return null;
+  return (
+    <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
+      <section aria-labelledby="plan-assumed">
+        <BlockHead id="plan-assumed" title="What is assumed" />
+        <ul className="border-t border-rule-2">
+          {planAssumptions(plan, outcome, report, atoms).map(({ origin, what, wrong }) => (
+            <li
+              key={what}
+              className="grid grid-cols-[7rem_1fr] gap-x-4 border-b border-rule py-3 max-sm:grid-cols-1 max-sm:gap-y-2"
+            >
+              <span>
+                <Badge tone={origin === "typed in" ? "ask" : "plain"}>{origin}</Badge>
+              </span>
+              <p className="figures text-ink-2">
+                <b className="font-semibold text-ink">{what}.</b> {wrong}
+              </p>
+            </li>
+          ))}
+        </ul>
+      </section>
+      <section aria-labelledby="plan-report">
+        <BlockHead id="plan-report" title="For the report">
+          <CopyButton text={text} as="link">
+            Copy
+          </CopyButton>
+        </BlockHead>
+        <p className="figures border-t border-rule-2 pt-3 text-ink-2">{text}</p>
+        <Note className="mt-4">Best case: no window brings back what the sampler never found.</Note>
+        <p className="mt-4 text-xs text-ink-3">
+          <TextLink to={`${href("/methods")}#plan`}>How this is computed</TextLink>
+        </p>
+      </section>
+    </div>
+  );
+}

@@ -1,0 +1,393 @@
+import { Download, Plus, X } from "lucide-react";
+import { saveText } from "~/components/charts/export-figure";
+import type { LevelData } from "~/components/levels/use-comparison";
+import { Button, IconButton } from "~/components/ui/button";
+import { TextField } from "~/components/ui/field";
+import { BlockHead } from "~/components/ui/finding";
+import { LevelMarker } from "~/components/ui/level-marker";
+import { NumberField } from "~/components/ui/number-field";
+import { SelectField } from "~/components/ui/select-field";
+import { Table, Td, Th, Tr } from "~/components/ui/table";
+import {
+  ABSENT,
+  formatCount,
+  formatEnergy,
+  formatPercent,
+  formatPopulation,
+  plural,
+  trimmed,
+  withUnit,
+} from "~/lib/format";
+import type { PlanOutcome, StepOutcome } from "~/lib/plan/evaluate";
+import { type Cut, MAX_STEPS, type Plan, type PlanStep } from "~/lib/plan/plan";
+import { formatHours, planCsv } from "~/lib/plan/words";
+import { HoursDialog } from "./hours-dialog";
+
+const BAR_PX = 120;
+
+/** The chain of levels in order of work: who is carried, what it costs, what is kept. */
+export function StepsTable({
+  plan,
+  levels,
+  atoms,
+  conformers,
+  outcome,
+  readOnly,
+  onChange,
+}: {
+  plan: Plan;
+  levels: readonly LevelData[];
+  atoms: number;
+  conformers: number;
+  outcome: PlanOutcome | null;
+  readOnly: boolean;
+  onChange: (plan: Plan) => void;
+}) {
+  const start = levels.find((level) => level.id === plan.start);
+  const most = Math.max(1e-12, ...(outcome?.steps.map((step) => step.cost) ?? []));
+  const setStep = (at: number, part: Partial<PlanStep>) =>
+    onChange({ ...plan, steps: plan.steps.map((step, k) => (k === at ? { ...step, ...part } : step)) });
+  return (
+    <section className="mt-9" aria-labelledby="plan-steps">
+      <BlockHead id="plan-steps" title="Steps">
+        {readOnly || plan.steps.length >= MAX_STEPS ? null : (
+          <Button
+            size="sm"
+            icon={<Plus aria-hidden="true" />}
+            onClick={() => onChange({ ...plan, steps: [...plan.steps, nextStep(plan)] })}
+          >
+            Step
+          </Button>
+        )}
+        <Button
+          size="sm"
+          icon={<Download aria-hidden="true" />}
+          disabled={outcome === null}
+          onClick={() =>
+            outcome && saveText("plan.csv", "text/csv", planCsv(plan, start?.name ?? "start", outcome))
+          }
+        >
+          CSV
+        </Button>
+      </BlockHead>
+      <Table aria-labelledby="plan-steps">
+        <thead>
+          <tr>
+            <Th>Level</Th>
+            <Th align="right" className="max-xl:hidden">
+              In
+            </Th>
+            <Th>Carry from the level before</Th>
+            <Th align="right">Carried</Th>
+            <Th align="right" unit="core hours" className="max-sm:hidden">
+              Each
+            </Th>
+            <Th unit={`core hours, ${formatPercent(plan.failRate)} repeated`} className="max-sm:hidden">
+              Cost
+            </Th>
+            <Th align="right" unit="%">
+              Kept
+            </Th>
+          </tr>
+        </thead>
+        <tbody>
+          <Tr>
+            <Td wrap>
+              <span className="flex items-center gap-2">
+                <LevelMarker ordinal={start?.ordinal ?? 1} />
+                {readOnly || levels.length < 2 ? (
+                  (start?.name ?? "start")
+                ) : (
+                  <SelectField
+                    label="Start"
+                    hideLabel
+                    className="min-w-40"
+                    value={plan.start}
+                    onChange={(event) => onChange({ ...plan, start: event.currentTarget.value })}
+                    choices={levels.map(({ id, name }) => ({ value: id, label: name }))}
+                  />
+                )}
+              </span>
+              <span className="block text-xs text-ink-3">done: {plural(conformers, "conformer")}</span>
+            </Td>
+            <Td className="max-xl:hidden" />
+            <Td className="text-ink-3">all</Td>
+            <Td align="right">{formatCount(conformers)}</Td>
+            <Td align="right" className="text-ink-3 max-sm:hidden">
+              {ABSENT}
+            </Td>
+            <Td className="text-ink-3 max-sm:hidden">done</Td>
+            <Td align="right">100.0</Td>
+          </Tr>
+          {plan.steps.map((step, s) => (
+            <StepRow
+              key={s}
+              {...{ step, levels, atoms, readOnly, most }}
+              outcome={outcome?.steps[s] ?? null}
+              onChange={(part) => setStep(s, part)}
+              onRemove={
+                plan.steps.length > 1
+                  ? () => onChange({ ...plan, steps: plan.steps.filter((_, k) => k !== s) })
+                  : undefined
+              }
+            />
+          ))}
+          <tr className="border-b border-rule-2">
+            <Td wrap>
+              Together
+              <span className="block text-xs text-ink-3">
+                {outcome ? `${withUnit(formatHours(outcome.wall), "hours")} of waiting on ` : "on "}
+                {plural(plan.slots, "slot")} of {plural(plan.coresPerSlot, "core")}
+                <span className="sm:hidden">
+                  {outcome ? `; ${withUnit(formatHours(outcome.cost), "core hours")}` : ""}
+                </span>
+              </span>
+            </Td>
+            <Td className="max-xl:hidden" />
+            <Td />
+            <Td />
+            <Td className="max-sm:hidden" />
+            <Td className="max-sm:hidden">
+              <b>{outcome ? formatHours(outcome.cost) : ABSENT}</b>
+            </Td>
+            <Td align="right" wrap>
+              {outcome
+                ? `${formatPopulation(outcome.kept.low)} to ${formatPopulation(outcome.kept.high)}`
+                : ABSENT}
+            </Td>
+          </tr>
+        </tbody>
+      </Table>
+    </section>
+  );
+}
+
+function nextStep(plan: Plan): PlanStep {
+  const last = plan.steps.at(-1);
+  return {
+    level: null,
+    name: "next level",
+    cut: { by: "share", share: last?.cut.by === "share" ? last.cut.share : 0.95 },
+    hours: { from: "rule", rule: "mp2-energy" },
+    sigma: 0.3,
+  };
+}
+
+function StepRow({
+  step,
+  levels,
+  atoms,
+  outcome,
+  readOnly,
+  most,
+  onChange,
+  onRemove,
+}: {
+  step: PlanStep;
+  levels: readonly LevelData[];
+  atoms: number;
+  outcome: StepOutcome | null;
+  readOnly: boolean;
+  most: number;
+  onChange: (part: Partial<PlanStep>) => void;
+  onRemove?: () => void;
+}) {
+  const known = levels.find((level) => level.id === step.level) ?? null;
+  return (
+    <Tr className="align-top">
+      <Td wrap>
+        <span className="flex items-center gap-2">
+          {known ? <LevelMarker ordinal={known.ordinal} /> : null}
+          {readOnly ? (
+            step.name
+          ) : (
+            <SelectField
+              label="Level"
+              hideLabel
+              className="min-w-40"
+              value={known?.id ?? ""}
+              onChange={(event) => {
+                const level = levels.find((one) => one.id === event.currentTarget.value);
+                onChange(level ? { level: level.id, name: level.name } : { level: null, name: "next level" });
+              }}
+              choices={[
+                ...levels.map(({ id, name }) => ({ value: id, label: name })),
+                { value: "", label: "Another level, predicted" },
+              ]}
+            />
+          )}
+          {onRemove && !readOnly ? (
+            <IconButton label={`Remove ${step.name}`} onClick={onRemove}>
+              <X aria-hidden="true" />
+            </IconButton>
+          ) : null}
+        </span>
+        {known ? (
+          <span className="block text-xs text-ink-3">energies known</span>
+        ) : (
+          <span className="mt-2 grid gap-2">
+            {readOnly ? null : (
+              <TextField
+                label="Name of the level"
+                value={step.name}
+                maxLength={120}
+                onChange={(event) => onChange({ name: event.currentTarget.value })}
+              />
+            )}
+            <NumberField
+              label="Error against the level before"
+              value={step.sigma}
+              min={0}
+              max={20}
+              step={0.1}
+              unit="kcal/mol"
+              disabled={readOnly}
+              write={formatEnergy}
+              wrong="An error lies between 0 and 20 kcal/mol, for example 0.30."
+              onCommit={(sigma) => onChange({ sigma: sigma ?? 0 })}
+            />
+          </span>
+        )}
+      </Td>
+      <Td align="right" className="max-xl:hidden">
+        {outcome ? formatCount(Math.round(outcome.in.mean)) : ABSENT}
+      </Td>
+      <Td wrap>
+        <CutFields
+          cut={step.cut}
+          outcome={outcome}
+          readOnly={readOnly}
+          onChange={(cut) => onChange({ cut })}
+        />
+      </Td>
+      <Td align="right">{carriedWords(outcome)}</Td>
+      <Td align="right" className="max-sm:hidden">
+        <HoursDialog
+          name={step.name}
+          source={step.hours}
+          atoms={atoms}
+          readOnly={readOnly}
+          onChange={(hours) => onChange({ hours })}
+        />
+      </Td>
+      <Td className="max-sm:hidden">
+        <span className="flex items-center gap-3">
+          <span className="w-14 text-right">{outcome ? formatHours(outcome.cost) : ABSENT}</span>
+          {outcome ? (
+            <svg width={BAR_PX} height="12" aria-hidden="true" className="max-xl:hidden">
+              <rect
+                x="0.5"
+                y="2"
+                width={Math.max(1, (BAR_PX - 2) * (outcome.cost / most))}
+                height="8"
+                fill="none"
+                className="stroke-ink-3"
+              />
+            </svg>
+          ) : null}
+        </span>
+      </Td>
+      <Td align="right">{outcome ? formatPopulation(outcome.kept.mean) : ABSENT}</Td>
+    </Tr>
+  );
+}
+
+/** The number carried, with its range where the draws differ. */
+function carriedWords(outcome: StepOutcome | null) {
+  if (!outcome) return ABSENT;
+  const { mean, low, high } = outcome.carried;
+  return (
+    <>
+      {formatCount(Math.round(mean))}
+      {high > low ? (
+        <span className="block text-xs text-ink-3">
+          {formatCount(Math.round(low))} to {formatCount(Math.round(high))}
+        </span>
+      ) : null}
+    </>
+  );
+}
+
+/** A window, a share of the final population, or all; a share says which window it takes. */
+function CutFields({
+  cut,
+  outcome,
+  readOnly,
+  onChange,
+}: {
+  cut: Cut;
+  outcome: StepOutcome | null;
+  readOnly: boolean;
+  onChange: (cut: Cut) => void;
+}) {
+  const window = outcome?.windowKcal ?? null;
+  const takes =
+    cut.by === "share" ? (
+      <span className="block text-xs text-ink-3">
+        {window === null ? "window follows" : `${withUnit(formatEnergy(window), "kcal/mol")}`}
+      </span>
+    ) : null;
+  if (readOnly) {
+    if (cut.by === "all") return "all";
+    return (
+      <>
+        {cut.by === "window"
+          ? withUnit(formatEnergy(cut.kcal), "kcal/mol")
+          : withUnit(trimmed(100 * cut.share, 2), "%")}
+        {takes}
+      </>
+    );
+  }
+  return (
+    <span className="flex flex-wrap gap-2">
+      <SelectField
+        label="Carry by"
+        hideLabel
+        className="w-28"
+        value={cut.by}
+        onChange={(event) => onChange(switchCut(event.currentTarget.value, window))}
+        choices={[
+          { value: "window", label: "Window" },
+          { value: "share", label: "Share" },
+          { value: "all", label: "All" },
+        ]}
+      />
+      {cut.by === "window" ? (
+        <NumberField
+          label="Window"
+          hideLabel
+          className="w-32 text-mark"
+          value={cut.kcal}
+          min={0}
+          max={1000}
+          step={0.1}
+          unit="kcal/mol"
+          write={formatEnergy}
+          wrong="A window lies between 0 and 1,000 kcal/mol."
+          onCommit={(kcal) => onChange({ by: "window", kcal: kcal ?? 0 })}
+        />
+      ) : cut.by === "share" ? (
+        <NumberField
+          label="Share to keep"
+          hideLabel
+          className="w-32 text-mark"
+          value={100 * cut.share}
+          min={0}
+          max={100}
+          above
+          step={1}
+          unit="%"
+          write={(value) => trimmed(value, 2)}
+          wrong="A share lies above 0 and up to 100 %."
+          onCommit={(share) => onChange({ by: "share", share: Number(((share ?? 95) / 100).toFixed(11)) })}
+        />
+      ) : null}
+      {takes}
+    </span>
+  );
+}
+
+function switchCut(by: string, windowKcal: number | null): Cut {
+  if (by === "window") return { by: "window", kcal: Number((windowKcal ?? 3).toFixed(2)) };
+  return by === "share" ? { by: "share", share: 0.95 } : { by: "all" };
+}
