@@ -29,6 +29,10 @@ export interface TextLine {
 }
 
 const NO_KEYS: ReadonlyMap<string, ExtendedEntry> = new Map();
+const NO_ELEMENTS = new Uint8Array(0);
+const NO_POSITIONS = new Float64Array(0);
+/** Blank, or a whole number alone: no atom line. */
+const NO_ATOM = /^[ \t]*\+?\d*[ \t]*$/;
 const NO_ODDITIES: ReadonlyMap<CommentOddity, string> = new Map();
 
 /**
@@ -39,8 +43,9 @@ export class FrameBuilder implements PlainTarget {
   readonly count: number;
   readonly countLine: CountLine;
   readonly line: number;
-  readonly elements: Uint8Array;
-  readonly positions: Float64Array;
+  /** Empty until the first atom: most candidates of a search are no frames, whatever they announce. */
+  elements: Uint8Array = NO_ELEMENTS;
+  positions: Float64Array = NO_POSITIONS;
   isotopes: Uint16Array | null = null;
   labels: (string | null)[] | null = null;
   read = 0;
@@ -65,6 +70,11 @@ export class FrameBuilder implements PlainTarget {
     this.count = countLine.count;
     this.countLine = countLine;
     this.line = line;
+  }
+
+  /** Places for all atoms announced; to be called before they are written. */
+  makeRoom(): void {
+    if (this.elements.length === this.count) return;
     this.elements = new Uint8Array(this.count);
     this.positions = new Float64Array(3 * this.count);
   }
@@ -134,6 +144,8 @@ export class FrameBuilder implements PlainTarget {
       this.read += 1;
       return true;
     }
+    if (NO_ATOM.test(line.text)) return false;
+    this.makeRoom();
     const result = readAtomLine(line.text, this.layout, this.positions, 3 * this.read);
     if (result.kind === "other") return false;
     if (result.kind === "fault") this.#note({ ...result.fault, line: line.number, atom: this.read + 1 });

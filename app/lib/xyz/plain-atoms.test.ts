@@ -12,6 +12,7 @@ function fast(text: string) {
     count: 1,
     read: 0,
     elements: new Uint8Array(1),
+    makeRoom() {},
     positions: new Float64Array(3),
     extra: -1,
     token: null as string | null,

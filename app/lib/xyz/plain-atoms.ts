@@ -40,6 +40,8 @@ export interface PlainTarget {
   readonly positions: Float64Array;
   /** Columns that must follow z; -1 lets the first line decide. */
   extra: number;
+  /** Makes `elements` and `positions` long enough for all atoms. */
+  makeRoom(): void;
   /** Takes note of a name that says more than its element: label, isotope, dummy, atomic number. */
   name(atom: number, token: string, parsed: NamedElement): void;
 }
@@ -53,6 +55,7 @@ export type NamedElement = Extract<ParsedElement, { kind: "element" | "dummy" }>
  */
 export function readPlainAtoms(lines: LineBuffer, target: PlainTarget): void {
   const { bytes, end } = lines;
+  target.makeRoom();
   let at = lines.at;
   let atom = target.read;
   while (atom < target.count) {
