@@ -248,6 +248,19 @@ function nameByLevel(drafts: readonly DraftColumn[], answers: ColumnAnswers): In
   ];
 }
 
+/** "E [kcal/mol]" and "E [eV]" are two headers and one name: the second counts, as equal headers do. */
+function nameApart(drafts: readonly DraftColumn[], file: string): IntakeMessage[] {
+  const seen = new Set<string>();
+  return drafts.flatMap((draft) => {
+    const { name } = draft;
+    for (let n = 2; seen.has(draft.name); n++) draft.name = `${[...name].slice(0, 112).join("")} (${n})`;
+    seen.add(draft.name);
+    if (draft.name === name) return [];
+    const message = `Two columns are called "${quoteFound(name)}"; the second is called "${quoteFound(draft.name)}".`;
+    return [{ code: "C05", severity: "remark" as const, file, line: 1, message }];
+  });
+}
+
 /**
  * What a table becomes in an ensemble: columns with their numbers by frame, what is left out, what is open, and the
  * report. Rows C02 to C15 and E10 to E13 of the formats.
@@ -284,6 +297,7 @@ export function planTable(table: RawTable, facts: TableFacts, answers: TableAnsw
   const list = new MessageList();
   list.addAll([...named, ...table.messages, ...match.messages, ...rowMessages(table, match)]);
   const questions = [...match.questions, ...nameByLevel(drafts, answers)];
+  list.addAll(nameApart(drafts, table.file));
   const style = answers.style === null ? askStyle(table) : null;
   if (style) questions.unshift(style);
   if (!table.hasHeader && answers.header === null) questions.unshift(askHeader(table));

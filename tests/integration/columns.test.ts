@@ -1,0 +1,353 @@
+import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import type { EnsembleAnswer } from "~/lib/api/schemas";
+import { makeMember, tokenOf } from "../factories/people";
+import { storedRows } from "../factories/stored";
+import {
+  BUTANE,
+  formOf,
+  frame,
+  makeLab,
+  post,
+  reference,
+  type Sent,
+  sifted,
+  takenIn,
+  withJobs,
+} from "../factories/upload";
+import { call } from "../setup/app";
+
+let token = "";
+let team = { id: "" };
+let jobs: { stop(): Promise<void> };
+
+beforeAll(async () => {
+  jobs = await withJobs();
+  const lab = await makeLab();
+  token = lab.token;
+  team = lab.team;
+});
+afterAll(() => jobs.stop());
+
+type Vector = [number, number, number];
+const dot = (a: Vector, b: Vector) => a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
+
+/** Butane with its last methyl group turned about the middle bond: frames that differ. */
+function butane(degrees: number): string[] {
+  const places = BUTANE.map((line) => line.split(" ").slice(1).map(Number) as Vector);
+  const [from, to] = [places[1], places[2]] as [Vector, Vector];
+  const along = to.map((x, k) => x - (from[k] ?? 0)) as Vector;
+  const axis = along.map((x) => x / Math.sqrt(dot(along, along))) as Vector;
+  const [c, s] = [Math.cos((degrees * Math.PI) / 180), Math.sin((degrees * Math.PI) / 180)];
+  return BUTANE.map((line, atom) => {
+    if (![3, 11, 12, 13].includes(atom)) return line;
+    const r = (places[atom] as Vector).map((x, k) => x - (to[k] ?? 0)) as Vector;
+    const across: Vector = [
+      axis[1] * r[2] - axis[2] * r[1],
+      axis[2] * r[0] - axis[0] * r[2],
+      axis[0] * r[1] - axis[1] * r[0],
+    ];
+    const turned = r.map((x, k) => {
+      const lengthwise = (axis[k] ?? 0) * dot(axis, r) * (1 - c);
+      return (to[k] ?? 0) + x * c + (across[k] ?? 0) * s + lengthwise;
+    });
+    return `${line.split(" ")[0]} ${turned.map((x) => x.toFixed(6)).join(" ")}`;
+  });
+}
+
+let made = 0;
+/** An ensemble of so many frames, labelled, with energies at MMFF94; each call makes one of its own. */
+async function ensemble(count: number, fields: Record<string, string> = {}): Promise<EnsembleAnswer> {
+  made += 1;
+  const text = Array.from({ length: count }, (_, k) =>
+    frame(`name="conf_${k + 1}" energy=${(k * 0.5 + made / 1000).toFixed(4)}`, butane(k * 3)),
+  ).join("");
+  return takenIn(token, [{ name: `run${made}.xyz`, content: text }], {
+    level: "MMFF94",
+    energyUnit: "kcal/mol",
+    energyFrom: "key:energy",
+    ...fields,
+  });
+}
+
+async function add(id: string, file: Sent, fields: Record<string, string> = {}, as = token) {
+  const response = await call(`/api/v1/ensembles/${id}/columns`, {
+    method: "POST",
+    token: as,
+    body: formOf([file], fields),
+  });
+  return { status: response.status, body: await response.json() };
+}
+
+const table = (content: string, name = "table.csv"): Sent => ({ name, content });
+const get = async (id: string): Promise<EnsembleAnswer> =>
+  (await call(`/api/v1/ensembles/${id}`, { token })).json();
+
+describe("a table", () => {
+  it("adds energies as levels and properties as columns, units deciding", async () => {
+    const { id } = await ensemble(6);
+    const { status, body } = await add(
+      id,
+      table(
+        "frame,cheap [kcal/mol],reference [kcal/mol],rg [Å],phi [deg]\n1,0.3,0,3.1,60\n2,0,0.4,3.2,61\n3,1.4,0.9,3.3,62\n4,1.1,1.5,3.4,63\n5,2.9,2.2,,64\n6,2.5,3,3.6,65\n",
+      ),
+    );
+    expect(status).toBe(201);
+    expect(body.columns).toMatchObject([
+      { name: "cheap", kind: "energy", unit: "kcal/mol", count: 6, missing: 0 },
+      { name: "reference", kind: "energy", unit: "kcal/mol", count: 6, missing: 0 },
+      { name: "rg", kind: "property", unit: "Å", count: 5, missing: 1 },
+      { name: "phi", kind: "property", unit: "deg", count: 6, missing: 0 },
+    ]);
+    const now = await get(id);
+    expect(now.levels.map(({ name }) => name)).toEqual(["MMFF94", "cheap", "reference"]);
+    const cheap = now.levels.find(({ name }) => name === "cheap");
+    expect(now.columns.find(({ name }) => name === "cheap")?.id).toBe(cheap?.id);
+    expect(body.messages.filter(({ code }: { code: string }) => code === "E13")).toHaveLength(2);
+  });
+
+  it("weighs and sifts at a level of a table", async () => {
+    const { id } = await ensemble(3);
+    await add(id, table("label,DFT [hartree]\nconf_3,-158.3\nconf_1,-158.301\nconf_2,-158.2995\n"));
+    const sift = await sifted(token, id, { level: "DFT", energyTolerance: null, rmsdTolerance: 0 });
+    expect(sift.result?.kept.map(({ frame: number }) => number)).toEqual([1, 3, 2]);
+    expect(sift.result?.kept[1]?.relativeEnergy).toBeCloseTo(0.627509474, 9);
+  });
+
+  it("takes kind, level, unit and energy kind from the fields", async () => {
+    const { id } = await ensemble(3);
+    const { status, body } = await add(id, table("frame,E\n1,-1.5\n2,-1.6\n3,-1.7\n"), {
+      kind: "energy",
+      level: "B3LYP",
+      energyUnit: "eV",
+      energyKind: "free",
+      energyTemperature: "310",
+    });
+    expect([status, body.columns[0].name, body.columns[0].unit]).toEqual([201, "B3LYP", "eV"]);
+    const level = (await get(id)).levels.find(({ name }) => name === "B3LYP");
+    expect(level).toMatchObject({ unit: "eV", energyKind: "free", temperature: 310 });
+    const forced = await add(id, table("frame,gap [eV]\n1,5\n2,6\n3,7\n"), { kind: "property" });
+    expect(forced.body.columns[0]).toMatchObject({ name: "gap", kind: "property", unit: "eV" });
+  });
+
+  it("refuses what it leaves open, naming the field that answers it, and stores nothing", async () => {
+    const { id } = await ensemble(3);
+    const before = await storedRows();
+    const open: [Sent, Record<string, string>, string][] = [
+      [table("frame,E\n1,5\n2,6\n3,7\n"), { kind: "energy" }, "energyUnit"],
+      [table("frame,E [debye]\n1,5\n2,6\n3,7\n"), { kind: "energy" }, "energyUnit"],
+      [table("frame;rg [nm]\n1;0,435\n2;0,5\n3;0,6\n"), {}, "numbers"],
+      [table("frame;V\n1;1.234,5\n2;5\n3;6\n"), {}, "numbers"],
+      [table("frame,rg [nm]\n0,1\n1,2\n2,3\n"), {}, "firstFrame"],
+      [table("1,2.5\n2,2.6\n3,2.7\n"), {}, "header"],
+      [table("who,rg\n1,2.5\n2,2.6\n3,2.7\n"), {}, "key"],
+      [table("label,rg\nCONF_1,2.5\nconf_2,2.6\nconf_3,1\n"), {}, "labels"],
+      [table("frame,mu [debye]\n1,2.5\n2,2.6\n3,2.7\n"), { rule: "circular" }, "rule"],
+      [table("frame,a [eV],b [eV]\n1,1,1\n2,2,2\n3,3,3\n"), { level: "X" }, "level"],
+    ];
+    for (const [file, fields, field] of open) {
+      const { status, body } = await add(id, file, fields);
+      expect(
+        [status, body.errors?.map((one: { field?: string }) => one.field)],
+        String(file.content),
+      ).toEqual([422, [field]]);
+    }
+    expect(await storedRows()).toEqual(before);
+  });
+
+  it("takes the answers to all of these", async () => {
+    const { id } = await ensemble(3);
+    const comma = await add(id, table("frame;rg [nm]\n1;0,435\n2;1.234,5\n3;0,6\n"), {
+      numbers: "comma-thousands",
+    });
+    expect(comma.body.columns[0]).toMatchObject({ count: 3 });
+    const zero = await add(id, table("index,d_A\n0,1\n1,2\n2,3\n"), { firstFrame: "0" });
+    expect(zero.body.columns[0]).toMatchObject({ name: "d_A", count: 3 });
+    const bare = await add(id, table("1\t2.5\n2\t2.6\n3\t2.7\n", "bare.tsv"), { header: "none" });
+    expect(bare.body.columns[0]).toMatchObject({ name: "column 2", count: 3 });
+    const loose = await add(id, table("label,x\nCONF_1,2.5\nconf_2 ,2.6\nconf_3,1\n"), { labels: "loose" });
+    expect(loose.body.columns[0]).toMatchObject({ count: 3 });
+  });
+
+  it("refuses double keys, foreign keys, wrong atoms and broken quotes with their lines", async () => {
+    const { id } = await ensemble(3);
+    const bad: [string, string, number][] = [
+      ["frame,x\n1,5\n2,5\n1,6\n", "C08", 4],
+      ["frame,x\n7,5\n8,6\n", "C07", 2],
+      ["frame,C5\n1,5\n2,6\n", "C15", 1],
+      ["frame,H99\n1,5\n2,6\n", "C15", 1],
+      ['frame,x\n1,5\n2,"6\n', "C11", 3],
+      ["frame,a,b,c\n1,0,5,1,5,2,5\n2,0,5,1,5,2,5\n", "C03", 2],
+    ];
+    for (const [content, code, line] of bad) {
+      const { status, body } = await add(id, table(content));
+      expect([status, body.code, body.errors[0].line], content).toEqual([422, code, line]);
+    }
+    expect((await get(id)).columns).toHaveLength(1);
+  });
+
+  it("keeps a missing value missing and says which", async () => {
+    const { id } = await ensemble(4);
+    const { body } = await add(id, table("frame,DFT [kcal/mol],n\n1,0.1,1\n2,NA,2\n4,0.3,x\n9,1,1\n"));
+    expect(body.columns).toMatchObject([
+      { name: "DFT", count: 2, missing: 2 },
+      { name: "n", count: 2, missing: 2 },
+    ]);
+    const said = body.messages.map((m: { code: string; frame?: number; line?: number }) => [
+      m.code,
+      m.frame,
+      m.line,
+    ]);
+    expect(said).toEqual(
+      expect.arrayContaining([
+        ["E10", 2, 3],
+        ["C07", 3, undefined],
+        ["C14", undefined, 4],
+        ["C07", undefined, 5],
+      ]),
+    );
+    const sift = await sifted(token, id, { level: "DFT" });
+    expect(sift.result?.withoutEnergy).toEqual([2, 3]);
+  });
+
+  it("takes a name once, or replaces under the same id", async () => {
+    const { id } = await ensemble(3);
+    const first = await add(id, table("frame,DFT [kcal/mol]\n1,0\n2,1\n3,2\n"));
+    const again = await add(id, table("frame,DFT [kcal/mol]\n1,0\n2,1\n3,3\n"));
+    expect([again.status, again.body.errors[0].field]).toEqual([409, "replace"]);
+    const replaced = await add(id, table("frame,DFT [kJ/mol]\n1,0\n2,4\n"), { replace: "true" });
+    expect(replaced.body.columns[0]).toMatchObject({
+      id: first.body.columns[0].id,
+      unit: "kJ/mol",
+      missing: 1,
+    });
+    const other = await add(id, table("frame,DFT [kJ/mol]\n1,0\n"), { replace: "true", kind: "property" });
+    expect(other.status).toBe(409);
+  });
+
+  it("is seen by a preview that keeps nothing", async () => {
+    const { id } = await ensemble(3);
+    const before = await storedRows();
+    const { status, body } = await add(id, table("frame;rg [nm]\n0;0,435\n2;0,5\n"), { preview: "true" });
+    expect(status).toBe(200);
+    expect(body.questions.map((q: { id: string }) => q.id)).toEqual(["numbers", "firstFrame"]);
+    expect(body).toMatchObject({ type: "table", delimiter: "semicolon", header: ["frame", "rg [nm]"] });
+    expect(body.rows).toEqual([
+      ["0", "0,435"],
+      ["2", "0,5"],
+    ]);
+    expect(await storedRows()).toEqual(before);
+  });
+
+  it("is refused from readers, foreign tokens and for foreign ensembles", async () => {
+    const { id } = await ensemble(3);
+    const reader = await makeMember(team.id, "reader");
+    const { token: stranger } = await makeLab();
+    const file = table("frame,x\n1,5\n");
+    expect((await add(id, file, {}, await tokenOf(reader.id, team.id))).status).toBe(403);
+    expect((await add(id, file, {}, stranger)).status).toBe(404);
+    expect((await add(id, file, { colour: "red" })).status).toBe(422);
+    expect((await post(token, `/ensembles/${id}/columns`, {})).status).toBe(415);
+  });
+
+  it("travels in export.csv with its unit, and reads back", async () => {
+    const { id } = await ensemble(3);
+    await add(id, table('frame,rg [Å],"=sum [ppm]"\n1,3.25,1\n2,-0.1,2\n3,3.3,3e-7\n'));
+    const sift = await sifted(token, id, { level: "MMFF94", energyTolerance: null, rmsdTolerance: 0 });
+    const csv = await (await call(`/api/v1/sifts/${sift.id}/export.csv`, { token })).text();
+    expect(csv.split("\r\n")[0]).toBe(
+      "frame,label,relativeEnergy,degeneracy,symmetryNumber,copies,found,population,MMFF94 [kcal/mol],rg [Å],'=sum [ppm]",
+    );
+    const other = await ensemble(3);
+    const { status, body } = await add(other.id, table(csv, "export.csv"), { replace: "true" });
+    expect(status).toBe(201);
+    expect(body.columns.map(({ name }: { name: string }) => name).sort()).toEqual(["=sum", "MMFF94", "rg"]);
+    const back = await sifted(token, other.id, { level: "MMFF94", energyTolerance: null, rmsdTolerance: 0 });
+    const again = await (await call(`/api/v1/sifts/${back.id}/export.csv`, { token })).text();
+    const values = (text: string) =>
+      text
+        .split("\r\n")
+        .slice(1)
+        .map((row) => row.split(",").slice(8).join());
+    expect(values(again)).toEqual(values(csv));
+  });
+});
+
+describe("a second structure file", () => {
+  it("with the same frames in another order is matched by coordinates", async () => {
+    const id = (
+      await takenIn(token, [{ name: "ac-ala.xyz", content: reference("ensembles/ac-ala-nhme.xyz") }], {
+        level: "MMFF94",
+        energyUnit: "kcal/mol",
+      })
+    ).id;
+    const text = reference("ensembles/ac-ala-nhme.xyz").toString("utf8");
+    const lines = text.trimEnd().split("\n");
+    const frames = Array.from({ length: 300 }, (_, k) => lines.slice(24 * k, 24 * (k + 1)));
+    const turned = frames
+      .map((one, k) => [one[0], `${one[1]} was=${k + 1}.5`, ...one.slice(2)].join("\n"))
+      .reverse();
+    const { status, body } = await add(
+      id,
+      { name: "again.xyz", content: `${turned.join("\n")}\n` },
+      {
+        level: "again",
+        energyUnit: "kcal/mol",
+        energyFrom: "key:was",
+      },
+    );
+    expect(status).toBe(201);
+    expect(body.columns).toMatchObject([{ name: "again", kind: "energy", count: 300, missing: 0 }]);
+    const sift = await sifted(token, id, { level: "again", energyTolerance: null, rmsdTolerance: 0 });
+    const kept = sift.result?.kept.map(({ frame: number, relativeEnergy }) => [number, relativeEnergy]) ?? [];
+    expect(kept.slice(0, 3)).toEqual([
+      [1, 0],
+      [2, 1],
+      [3, 2],
+    ]);
+  });
+
+  it("of some frames lists the others, and refuses energies without a level", async () => {
+    const { id } = await ensemble(4);
+    const second = [2, 0, 20].map((k) => frame(`energy=${-k - 0.25}`, butane(k * 3))).join("");
+    const file = { name: "second.xyz", content: second };
+    const open = await add(id, file, { energyUnit: "kJ/mol" });
+    expect([open.status, open.body.errors[0].field]).toEqual([422, "level"]);
+    const unit = await add(id, file, { level: "UFF" });
+    expect([unit.status, unit.body.errors[0].field]).toEqual([422, "energyUnit"]);
+    const { status, body } = await add(id, file, { level: "UFF", energyUnit: "kJ/mol", kind: "energy" });
+    expect(status).toBe(201);
+    expect(body.columns).toMatchObject([{ name: "UFF", unit: "kJ/mol", count: 2, missing: 2 }]);
+    const said = body.messages.filter(({ code }: { code: string }) => code === "E14");
+    expect(said.map((m: { frame?: number }) => m.frame)).toEqual([2, 4, undefined]);
+  });
+
+  it("by number or label goes without structures", async () => {
+    const { id } = await ensemble(3);
+    const far = [15, 16, 17].map((k, n) => frame(`name=conf_${3 - n} energy=${n}.5`, butane(k * 3))).join("");
+    const file = { name: "far.xyz", content: far };
+    const fields = { energyUnit: "kcal/mol", energyFrom: "key:energy" };
+    const none = await add(id, file, { ...fields, level: "a" });
+    expect([none.status, none.body.code], JSON.stringify(none.body)).toEqual([422, "E14"]);
+    expect((await add(id, file, { ...fields, level: "number", match: "number" })).status).toBe(201);
+    expect((await add(id, file, { ...fields, level: "label", match: "label" })).status).toBe(201);
+    const at = async (level: string) =>
+      (await sifted(token, id, { level, energyTolerance: null, rmsdTolerance: 0 })).result?.kept.map(
+        ({ frame: number }) => number,
+      );
+    expect(await at("number")).toEqual([1, 2, 3]);
+    expect(await at("label")).toEqual([3, 2, 1]);
+  });
+
+  it("of another molecule is refused", async () => {
+    const { id } = await ensemble(2);
+    const { status } = await add(
+      id,
+      { name: "w.xyz", content: "3\nenergy=1\nO 0 0 0\nH 0.96 0 0\nH -0.2 0.94 0\n" },
+      {
+        level: "x",
+        energyUnit: "eV",
+      },
+    );
+    expect(status).toBe(422);
+  });
+});
