@@ -115,6 +115,21 @@ describe("the limit of bytes", () => {
   });
 
   it.each([
+    ["zeros", "\0"],
+    ["blank lines", "\n"],
+    ["lines that could begin a frame", "900\n"],
+    ["another format", "HEADER    A PROTEIN\n"],
+  ])("is what a bomb of %s is told, and one byte less is not", async (_, piece) => {
+    const bytes = Buffer.alloc(24e6, piece);
+    withEnv({ MAX_FILE_BYTES: bytes.length - 1 });
+    const large = await refusal(gzipSync(bytes), fields, "bomb.xyz.gz");
+    expect(large.status).toBe(413);
+    expect(large.errors).toMatchObject([{ file: "bomb.xyz.gz" }]);
+    withEnv({ MAX_FILE_BYTES: bytes.length });
+    expect((await refusal(gzipSync(bytes), fields, "bomb.xyz.gz")).status).toBe(422);
+  });
+
+  it.each([
     ["blank lines", "\n"],
     ["short lines", "x\n"],
     ["lines that could begin a frame", "900\n"],

@@ -96,7 +96,9 @@ function otherWords(candidate: EnergyCandidate): string {
  * @example energyUnitQuestion(candidate, findUnit(candidate, elements)).options.map((option) => option.spreadKcal)
  */
 export function energyUnitQuestion(candidate: EnergyCandidate, finding: UnitFinding): IntakeQuestion {
-  const units = new Set<EnergyUnit>([...OFFERED_UNITS, ...candidate.unitRows.keys()]);
+  const written = [...candidate.unitRows.keys()];
+  // With two units beside it one of them is meant: another would leave no frame with an energy.
+  const units = new Set<EnergyUnit>(written.length > 1 ? written : [...OFFERED_UNITS, ...written]);
   const proposed = finding.proposed;
   const ordered = [...units].sort(
     (a, b) => Number(b === proposed) - Number(a === proposed) || kcalPer(a) - kcalPer(b),

@@ -66,6 +66,26 @@ async function* unpacked(
   }
 }
 
+/** The bytes for a reader that may leave early without closing them. */
+export function keptOpen(bytes: AsyncGenerator<Uint8Array>): AsyncIterable<Uint8Array> {
+  return { [Symbol.asyncIterator]: () => ({ next: () => bytes.next() }) };
+}
+
+/**
+ * What a packed file comes to that its reader refused: the rest is unpacked and counted, nothing more, so that a small
+ * file that unpacks beyond the limit is told so whatever lies in it. At the limit of 512 MB that is half a second.
+ *
+ * @returns the refusal to give: the reader's own, or that the file is too large
+ */
+export async function refusalOfPacked(refusal: unknown, bytes: AsyncGenerator<Uint8Array>): Promise<unknown> {
+  try {
+    while (!(await bytes.next()).done);
+  } catch (error) {
+    if (error instanceof DomainError && error.code === "too-large") return error;
+  }
+  return refusal;
+}
+
 /**
  * Opens a file by what it begins with: gzip is unpacked, one layer, anything else passes. Counts what comes out and
  * stops as soon as the limit is passed, whatever the ratio of packing.

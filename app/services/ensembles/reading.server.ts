@@ -21,7 +21,7 @@ import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
 import { BlockWriter } from "./block-writer.server.ts";
 import { checkFormat } from "./check-format.ts";
 import { type FrameDecision, FrameWriter, writeDecisions } from "./frame-writer.server.ts";
-import { openFile } from "./open-file.server.ts";
+import { keptOpen, type OpenedFile, openFile, refusalOfPacked } from "./open-file.server.ts";
 
 /** Longest time that reading keeps the process from other requests. */
 const BREATH_MS = 15;
@@ -173,11 +173,23 @@ export class Reading {
    * @throws IntakeRejection, or DomainError too-large
    */
   async readFile(name: string, source: AsyncIterable<Uint8Array>): Promise<void> {
+    const remark = (message: Parameters<MessageList["add"]>[0]) => this.messages.add(message);
+    const file = await openFile(source, { file: name, limit: env().MAX_FILE_BYTES, remark });
+    try {
+      await this.readOpened(name, file);
+    } catch (error) {
+      if (!file.packed || !(error instanceof IntakeRejection)) throw error;
+      throw await refusalOfPacked(error, file.bytes);
+    } finally {
+      await file.bytes.return(undefined);
+    }
+  }
+
+  private async readOpened(name: string, file: OpenedFile): Promise<void> {
     const own = this.sources++;
     const settings = env();
     const remark = (message: Parameters<MessageList["add"]>[0]) => this.messages.add(message);
-    const file = await openFile(source, { file: name, limit: settings.MAX_FILE_BYTES, remark });
-    const { format, bytes } = await checkFormat(name, file.bytes, remark);
+    const { format, bytes } = await checkFormat(name, keptOpen(file.bytes), remark);
     const { after } = this.options;
     const before = this.frames + (after?.frames ?? 0);
     const Reader = format === "sdf" ? SdfReader : XyzReader;
