@@ -203,10 +203,16 @@ function useShown(
     }));
     const chosen = told.find(({ one }) => one.property.id === wanted);
     if (chosen) return chosen;
+    // What somebody picked on the structure is what they look at; a column without a unit may be a mere number.
+    const rank = ({ one }: (typeof told)[number]) =>
+      one.property.definition ? 2 : one.property.unit === null ? 0 : 1;
     const moved = ({ one, contributions }: (typeof told)[number]) =>
       Math.abs(contributions.mover?.change ?? 0) / Math.max(1e-9, Math.abs(one.average.value ?? 1));
     return told.reduce<(typeof told)[number] | null>(
-      (best, next) => (best === null || moved(next) > moved(best) ? next : best),
+      (best, next) =>
+        best === null || rank(next) > rank(best) || (rank(next) === rank(best) && moved(next) > moved(best))
+          ? next
+          : best,
       null,
     );
   }, [averaged, weighed, wanted, temperatureK]);

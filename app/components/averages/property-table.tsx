@@ -68,7 +68,7 @@ export function PropertyTable({
                 {formatTemperature(kelvin)} K
               </Th>
             ))}
-            <Th align="right" unit="of the shapes" className="max-lg:hidden">
+            <Th align="right" unit="of the shapes" className="max-xl:hidden">
               Spread
             </Th>
             <Th align="right" unit="of the level">
@@ -77,7 +77,7 @@ export function PropertyTable({
             <Th align="right" unit="%" className="max-sm:hidden">
               Covered
             </Th>
-            <Th>Unit</Th>
+            <Th className="max-sm:hidden">Unit</Th>
           </tr>
         </thead>
         <tbody>
@@ -107,12 +107,12 @@ export function PropertyTable({
               {averaged.temperatures.slice(1).map((kelvin) => (
                 <Td key={kelvin} className="max-sm:hidden" />
               ))}
-              <Td className="max-lg:hidden" />
+              <Td className="max-xl:hidden" />
               <Td />
               <Td align="right" className="max-sm:hidden">
                 <Covered covered={group.covered} refused={group.covered < 0.9} />
               </Td>
-              <Td className="text-ink-2">{group.unit ?? ""}</Td>
+              <Td className="text-ink-2 max-sm:hidden">{group.unit ?? ""}</Td>
             </Tr>
           ))}
         </tbody>
@@ -166,14 +166,15 @@ function PropertyRow({
         <button
           type="button"
           aria-pressed={selected}
-          className="rounded-sm text-left font-medium break-words hover:underline pointer-coarse:min-h-11"
+          className="rounded-sm text-left font-medium [overflow-wrap:anywhere] hover:underline pointer-coarse:min-h-11"
           onClick={() => onChoose(property.id)}
         >
           {property.name}
         </button>
         <span className="block text-xs text-ink-3">
           <span className="xl:hidden">{rule}; </span>
-          {originWords(property)}
+          <span className="[overflow-wrap:anywhere]">{originWords(property)}</span>
+          {property.unit ? <span className="sm:hidden">, in {property.unit}</span> : null}
         </span>
       </Td>
       <Td wrap className="text-ink-2 max-xl:hidden">
@@ -216,7 +217,7 @@ function PropertyRow({
           )}
         </Td>
       ))}
-      <Td align="right" className="max-lg:hidden">
+      <Td align="right" className="max-xl:hidden">
         {fixed(average.spread, digits)}
       </Td>
       <Td align="right">
@@ -225,7 +226,7 @@ function PropertyRow({
       <Td align="right" className="max-sm:hidden">
         <Covered covered={average.covered} refused={average.state === "not-covered"} />
       </Td>
-      <Td className="text-ink-2">{property.unit ?? ""}</Td>
+      <Td className="text-ink-2 max-sm:hidden">{property.unit ?? ""}</Td>
     </Tr>
   );
 }

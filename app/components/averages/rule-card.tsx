@@ -30,7 +30,9 @@ export function RuleCard({
   const rules = [...new Set([...possibleRules(property), now])];
   const facts = { degeneracies: weighed.kept.map((one) => one.degeneracy), mirrorMerged };
   const having = property.values.filter((value) => value !== null).length;
-  if (rules.length < 2) return null;
+  // What was picked on the structure leaves no doubt, but for a distance.
+  const settled = property.definition !== null && property.definition.observable !== "distance";
+  if (rules.length < 2 || settled) return null;
   return (
     <fetcher.Form method="post" className="mt-9">
       <input type="hidden" name="intent" value="rule" />

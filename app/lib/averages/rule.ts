@@ -56,5 +56,5 @@ export function possibleRules(column: { name: string; unit: string | null }): Av
       ? ["linear", "r-6", "r-3"]
       : ["r-6", "r-3", "linear"];
   }
-  return /dipole/i.test(column.name) ? ["rms", "linear"] : ["linear", "rms"];
+  return /dipole/i.test(column.name) ? ["rms", "linear"] : ["linear"];
 }
