@@ -2,6 +2,7 @@ import { Cite, FormulaLine, type ReferenceSection, SectionLink } from "~/compone
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { fixed } from "~/lib/format";
 import { CONSTANTS_YEAR } from "~/lib/units";
+import { LevelErrorText, LevelsText, PlanText } from "./level-sections";
 
 /** Figures that the text names, as the code has them. */
 export interface MethodNumbers {
@@ -34,6 +35,9 @@ export function methodSections(n: MethodNumbers): ReferenceSection[] {
     { id: "symmetry", title: "Symmetry and mirror images", body: <SymmetryText n={n} /> },
     { id: "distinct-set", title: "The distinct set", body: <DistinctText n={n} /> },
     { id: "populations", title: "Populations and free energy", body: <PopulationsText /> },
+    { id: "levels", title: "Levels against each other, and windows", body: <LevelsText /> },
+    { id: "level-error", title: "The error of a level", body: <LevelErrorText /> },
+    { id: "plan", title: "Plans and their cost", body: <PlanText /> },
     { id: "measures", title: "Distances, angles, torsions", body: <MeasuresText /> },
     { id: "digits", title: "Digits, exports, repeatability", body: <DigitsText /> },
   ];
@@ -249,7 +253,8 @@ function PopulationsText() {
       </ul>
       <p>
         An error of 0.5 kcal/mol in an energy difference changes a ratio of populations by a factor of 2.3 at
-        298.15 K. Read populations with the error of your level in mind; the product does not carry it yet.
+        298.15 K. Read populations with <SectionLink to="#level-error">the error of your level</SectionLink>{" "}
+        in mind.
       </p>
     </>
   );
