@@ -577,7 +577,7 @@ export const pairMatrices = mysqlTable(
   (t) => [uniqueIndex("pair_matrices_same").on(t.ensembleId, t.inputSha)],
 );
 
-/** Packed lower triangle without diagonal as little-endian floats, in blocks of about 1 MB. */
+/** Packed upper triangle without diagonal, row by row, as little-endian floats, in blocks of about 1 MB. */
 export const pairMatrixBlocks = mysqlTable(
   "pair_matrix_blocks",
   {

@@ -1,20 +1,33 @@
+import { PairMatrixWork, packedLength } from "../lib/align/pair-matrix.ts";
+import { makePlan } from "../lib/align/plan.ts";
 import { matchFrames } from "../lib/levels/match-frames.ts";
 import { runSift, SiftCancelled } from "../lib/recipe/run.ts";
 import { makeGraph } from "../lib/structure.ts";
-import type {
-  ComputeTask,
-  MatchAnswer,
-  MatchTask,
-  ProgressMessage,
-  SiftAnswer,
-  SiftTask,
+import {
+  type ComputeTask,
+  MATRIX_COUNTERS,
+  type MatchAnswer,
+  type MatchTask,
+  type MatrixAnswer,
+  type MatrixTask,
+  type ProgressMessage,
+  type SiftAnswer,
+  type SiftTask,
 } from "./protocol.ts";
 
 const PROGRESS_INTERVAL_MS = 100;
 
 /** Thread entry: one task in, one answer out. It computes and knows neither database nor network. */
-export default function compute(task: ComputeTask): SiftAnswer | MatchAnswer {
-  return task.kind === "match" ? match(task) : sift(task);
+export default function compute(task: ComputeTask): SiftAnswer | MatchAnswer | MatrixAnswer {
+  if (task.kind === "match") return match(task);
+  try {
+    return task.kind === "sift" ? sift(task) : matrix(task);
+  } catch (error) {
+    if (error instanceof SiftCancelled) return { kind: "cancelled" };
+    throw error;
+  } finally {
+    task.port.close();
+  }
 }
 
 function match(task: MatchTask): MatchAnswer {
@@ -36,33 +49,57 @@ function match(task: MatchTask): MatchAnswer {
   return { kind: "matched", matches };
 }
 
+/** Tells how far it is, at most ten times a second. */
+function reporter({ port }: SiftTask | MatrixTask): (progress: number, pairs: number) => void {
+  let last = 0;
+  return (progress, pairs) => {
+    const now = performance.now();
+    if (now - last < PROGRESS_INTERVAL_MS) return;
+    last = now;
+    port.postMessage({ progress, pairs } satisfies ProgressMessage);
+  };
+}
+
 function sift(task: SiftTask): SiftAnswer {
-  let lastReport = 0;
-  try {
-    const result = runSift(
-      {
-        graph: makeGraph(task.elements, task.bonds, task.isotopes),
-        block: { atoms: task.atoms, count: task.numbers.length, positions: task.positions },
-        numbers: task.numbers,
-        energies: task.energies,
-        recipe: task.recipe,
-      },
-      {
-        now: () => performance.now(),
-        cancelled: () => Atomics.load(task.cancel, 0) !== 0,
-        progress(fraction) {
-          const now = performance.now();
-          if (now - lastReport < PROGRESS_INTERVAL_MS) return;
-          lastReport = now;
-          task.port.postMessage({ progress: fraction } satisfies ProgressMessage);
-        },
-      },
-    );
-    return { kind: "done", result };
-  } catch (error) {
-    if (error instanceof SiftCancelled) return { kind: "cancelled" };
-    throw error;
-  } finally {
-    task.port.close();
+  const report = reporter(task);
+  const result = runSift(
+    {
+      graph: makeGraph(task.elements, task.bonds, task.isotopes),
+      block: { atoms: task.atoms, count: task.numbers.length, positions: task.positions },
+      numbers: task.numbers,
+      energies: task.energies,
+      recipe: task.recipe,
+    },
+    {
+      now: () => performance.now(),
+      cancelled: () => Atomics.load(task.cancel, 0) !== 0,
+      progress: (fraction, pairs) => report(fraction, pairs ?? 0),
+    },
+  );
+  return { kind: "done", result };
+}
+
+function matrix(task: MatrixTask): MatrixAnswer {
+  const { counters, recipe, kernel } = task;
+  const report = reporter(task);
+  const cancelled = () => Atomics.load(task.cancel, 0) !== 0;
+  const graph = makeGraph(task.elements, task.bonds, task.isotopes);
+  const block = {
+    atoms: task.atoms,
+    count: task.positions.length / (3 * task.atoms),
+    positions: task.positions,
+  };
+  const plan = makePlan(graph, recipe.atoms, { symmetry: recipe.symmetry });
+  const work = new PairMatrixWork({ plan, block, mirror: recipe.mirror, kernel });
+  const total = packedLength(work.count);
+  for (;;) {
+    const tile = Atomics.add(counters, MATRIX_COUNTERS.nextTile, 1);
+    if (tile >= work.tiles) break;
+    work.fill(tile, task.matrix, { cancelled });
+    const size = work.pairsIn(tile);
+    const pairs = Atomics.add(counters, MATRIX_COUNTERS.pairs, size) + size;
+    report(pairs / total, pairs);
   }
+  Atomics.add(counters, MATRIX_COUNTERS.inexact, work.inexact);
+  return { kind: "done" };
 }

@@ -2,6 +2,7 @@ import type { MessagePort } from "node:worker_threads";
 import type { FrameMatches } from "../lib/levels/match-frames.ts";
 import type { SiftRecipe } from "../lib/recipe/recipe.ts";
 import type { SiftResult } from "../lib/recipe/result.ts";
+import type { AtomSet } from "../lib/structure.ts";
 
 /**
  * What the server hands to a computing thread. Typed arrays are moved, not copied: the sender's own are empty afterwards.
@@ -40,14 +41,43 @@ export interface MatchTask {
 
 export type MatchAnswer = { kind: "matched"; matches: FrameMatches };
 
-export type ComputeTask = SiftTask | MatchTask;
+/** One thread's share of a pair matrix: all threads take tiles from one counter and write into one buffer. */
+export interface MatrixTask {
+  kind: "matrix";
+  elements: Uint8Array;
+  isotopes: Uint16Array;
+  bonds: Int32Array;
+  atoms: number;
+  /** Shared by all threads; frames in the order of the matrix. */
+  positions: Float64Array;
+  /** What the distances hang on beside the frames. */
+  recipe: { atoms: AtomSet; symmetry: boolean; mirror: boolean };
+  /** Shared: the packed upper triangle. */
+  matrix: Float32Array;
+  /** Shared, see `MATRIX_COUNTERS`. */
+  counters: Int32Array;
+  /** Compiled kernel; null computes the same bytes more slowly. */
+  kernel: WebAssembly.Module | null;
+  /** As of a sift. */
+  cancel: Int32Array;
+  port: MessagePort;
+}
+
+/** Places in `MatrixTask.counters`: the next tile, pairs done, pairs whose work bound was met. */
+export const MATRIX_COUNTERS = { nextTile: 0, pairs: 1, inexact: 2 } as const;
+
+export type ComputeTask = SiftTask | MatchTask | MatrixTask;
 
 /** Sent through the task's port, at most ten times a second. */
 export interface ProgressMessage {
   progress: number;
+  /** Pairs compared so far. */
+  pairs: number;
 }
 
 export type SiftAnswer = { kind: "done"; result: Omit<SiftResult, "held"> } | { kind: "cancelled" };
+
+export type MatrixAnswer = { kind: "done" } | { kind: "cancelled" };
 
 /** Buffers and ports of a task that change their owner. */
 export function transferList(task: SiftTask): (ArrayBuffer | MessagePort)[] {

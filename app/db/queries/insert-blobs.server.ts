@@ -30,3 +30,16 @@ export async function insertFrameBlock(row: {
     [row.ensembleId, row.shape, row.first, row.count, row.data, row.sha256],
   );
 }
+
+/** One block of a pair matrix. */
+export async function insertMatrixBlock(row: {
+  matrixId: string;
+  position: number;
+  data: Buffer;
+}): Promise<void> {
+  await pool().execute("insert into pair_matrix_blocks (matrix_id, position, data) values (?, ?, ?)", [
+    row.matrixId,
+    row.position,
+    row.data,
+  ]);
+}

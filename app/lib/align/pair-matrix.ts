@@ -94,6 +94,16 @@ export class PairMatrixWork {
     }
   }
 
+  /** Pairs that a tile covers. */
+  pairsIn(tile: number): number {
+    const top = this.corners[2 * tile]!;
+    const left = this.corners[2 * tile + 1]!;
+    const right = Math.min(left + TILE_COLUMNS, this.count);
+    let pairs = 0;
+    for (let i = top; i < Math.min(top + TILE_ROWS, right - 1); i++) pairs += right - Math.max(left, i + 1);
+    return pairs;
+  }
+
   private frameOf(k: number): number {
     const { rows, block } = this.input;
     const row = rows ? rows[k]! : k;

@@ -106,11 +106,11 @@ class LeaderWalk {
     for (let step = 0; step < rows.length; step++) {
       this.look();
       const percent = Math.floor((100 * step) / rows.length);
-      if (percent !== shown) this.hooks.progress?.(step / rows.length);
+      if (percent !== shown) this.hooks.progress?.(step / rows.length, this.result.pairs);
       shown = percent;
       this.take(step);
     }
-    this.hooks.progress?.(1);
+    this.hooks.progress?.(1, this.result.pairs);
     return this.result;
   }
 

@@ -5,7 +5,8 @@ export interface JobRun {
   payload: unknown;
   cancel: Int32Array;
   signal: AbortSignal;
-  progress(fraction: number): void;
+  /** How far it is, with the pairs compared so far. */
+  progress(fraction: number, pairs?: number): void;
 }
 
 /** The thread saw the word and stopped. */

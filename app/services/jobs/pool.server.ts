@@ -1,12 +1,15 @@
 import { existsSync } from "node:fs";
+import { readFile } from "node:fs/promises";
 import { availableParallelism } from "node:os";
 import path from "node:path";
-import { MessageChannel } from "node:worker_threads";
+import { MessageChannel, type MessagePort } from "node:worker_threads";
 import { Piscina } from "piscina";
 import { env } from "../../env.server.ts";
 import {
   type MatchAnswer,
   type MatchTask,
+  type MatrixAnswer,
+  type MatrixTask,
   matchBuffers,
   type ProgressMessage,
   type SiftAnswer,
@@ -20,6 +23,11 @@ const BUNDLE = "compute.worker.mjs";
 /** How many jobs this process computes at once: one a thread. */
 export function threadCount(): number {
   return env().WORKER_THREADS || Math.max(1, availableParallelism() - 1);
+}
+
+/** Threads that one pair matrix is shared by: all cores, since it is asked for by hand and others wait their turn fairly. */
+export function matrixThreads(): number {
+  return env().WORKER_THREADS || availableParallelism();
 }
 
 /** Where the thread entry lies, as `scripts/build-worker.mjs` makes it. */
@@ -43,7 +51,7 @@ function pool(): Piscina {
     state.pool = new Piscina({
       filename: workerBundle(),
       minThreads: 1,
-      maxThreads: threadCount(),
+      maxThreads: Math.max(threadCount(), matrixThreads()),
       idleTimeout: 60_000,
     });
   }
@@ -68,28 +76,43 @@ function isCrash(error: unknown): boolean {
   );
 }
 
+interface TaskHooks {
+  progress(fraction: number, pairs: number): void;
+  signal: AbortSignal;
+}
+
 /**
- * Computes one task in a thread. The task's arrays are moved there and empty afterwards.
+ * Computes one task in a thread. What `buffers` names is moved there and empty afterwards.
  *
  * @throws WorkerLost when the thread ended; whatever the computation itself throws
  */
-export async function computeSift(
-  task: Omit<SiftTask, "kind" | "port">,
-  hooks: { progress(fraction: number): void; signal: AbortSignal },
-): Promise<SiftAnswer> {
+async function compute<Task extends { port: MessagePort }, Answer>(
+  task: Omit<Task, "port">,
+  transfers: (task: Task) => (ArrayBuffer | MessagePort)[],
+  hooks: TaskHooks,
+): Promise<Answer> {
   const { port1, port2 } = new MessageChannel();
-  port1.on("message", (message: ProgressMessage) => hooks.progress(message.progress));
+  port1.on("message", ({ progress, pairs }: ProgressMessage) => hooks.progress(progress, pairs));
   port1.unref();
-  const full: SiftTask = { ...task, kind: "sift", port: port2 };
+  const full = { ...task, port: port2 } as Task;
   try {
-    return await pool().run(full, { transferList: transferList(full), signal: hooks.signal });
+    return await pool().run(full, { transferList: transfers(full), signal: hooks.signal });
   } catch (error) {
-    if (isCrash(error))
-      throw new WorkerLost("The computing thread ended before its answer.", { cause: error });
-    throw error;
+    throw asLost(error);
   } finally {
     port1.close();
   }
+}
+
+function asLost(error: unknown): unknown {
+  return isCrash(error)
+    ? new WorkerLost("The computing thread ended before its answer.", { cause: error })
+    : error;
+}
+
+/** One sift; its arrays are moved to the thread and empty afterwards. Throws as `compute`. */
+export function computeSift(task: Omit<SiftTask, "kind" | "port">, hooks: TaskHooks): Promise<SiftAnswer> {
+  return compute<SiftTask, SiftAnswer>({ ...task, kind: "sift" }, transferList, hooks);
 }
 
 /**
@@ -103,10 +126,39 @@ export async function computeMatch(task: Omit<MatchTask, "kind">): Promise<Match
     const answer: MatchAnswer = await pool().run(full, { transferList: matchBuffers(full) });
     return answer.matches;
   } catch (error) {
-    if (isCrash(error))
-      throw new WorkerLost("The computing thread ended before its answer.", { cause: error });
-    throw error;
+    throw asLost(error);
   }
+}
+
+/**
+ * A pair matrix, by as many threads as `threads` says over shared buffers: the same bytes whatever their number. Throws
+ * as `compute`.
+ */
+export async function computeMatrix(
+  task: Omit<MatrixTask, "kind" | "port" | "kernel">,
+  hooks: TaskHooks,
+  threads = matrixThreads(),
+): Promise<MatrixAnswer> {
+  const kernel = await compiledKernel();
+  const shares = Array.from({ length: threads }, () =>
+    compute<MatrixTask, MatrixAnswer>({ ...task, kind: "matrix", kernel }, ({ port }) => [port], hooks),
+  );
+  const answers = await Promise.all(shares).catch((error: unknown) => {
+    // The others must not go on for nobody.
+    Atomics.store(task.cancel, 0, 1);
+    throw error;
+  });
+  return answers.find(({ kind }) => kind === "cancelled") ?? { kind: "done" };
+}
+
+let kernel: Promise<WebAssembly.Module | null> | null = null;
+
+/** The kernel beside the thread entry; null where it was not built or this machine does not take it. */
+function compiledKernel(): Promise<WebAssembly.Module | null> {
+  kernel ??= readFile(path.join(path.dirname(workerBundle()), "kernel.wasm"))
+    .then((bytes) => WebAssembly.compile(bytes))
+    .catch(() => null);
+  return kernel;
 }
 
 /** Ends all threads. */

@@ -40,6 +40,7 @@ async function run(job: ClaimedJob): Promise<void> {
     cancel: new Int32Array(new SharedArrayBuffer(4)),
     abort: new AbortController(),
     progress: 0,
+    pairs: 0,
     ended: Promise.resolve(),
   };
   const work = async () => {
@@ -52,8 +53,9 @@ async function run(job: ClaimedJob): Promise<void> {
         payload: job.payload,
         cancel: running.cancel,
         signal: running.abort.signal,
-        progress: (fraction) => {
+        progress: (fraction, pairs = 0) => {
           running.progress = Math.max(running.progress, Math.min(1, fraction));
+          running.pairs = Math.max(running.pairs, pairs);
         },
       });
     } catch (error) {

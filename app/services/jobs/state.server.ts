@@ -8,6 +8,8 @@ export interface RunningJob {
   /** Ends the thread itself, for one that does not look at the word. */
   abort: AbortController;
   progress: number;
+  /** Pairs compared so far. */
+  pairs: number;
   ended: Promise<void>;
 }
 
@@ -53,4 +55,9 @@ export function forgetJobState(): void {
 /** How far a job of this process has come; null for one that runs elsewhere or not at all. */
 export function progressHere(jobId: string): number | null {
   return jobState().running.get(jobId)?.progress ?? null;
+}
+
+/** Pairs that a job of this process has compared; null for one that runs elsewhere or not at all. */
+export function pairsHere(jobId: string): number | null {
+  return jobState().running.get(jobId)?.pairs ?? null;
 }

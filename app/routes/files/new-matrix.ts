@@ -1,0 +1,17 @@
+import { z } from "zod";
+import { answerCall, json, readJson } from "~/routes/api/answer-call.server";
+import { accessSift } from "~/services/auth/access.server";
+import { askForMatrix } from "~/services/matrices/ask-for-matrix.server";
+
+const bodySchema = z.strictObject({ frames: z.enum(["kept", "compared"]).default("kept") });
+
+/** Asks for the distances of all pairs of a sift's frames. */
+export const loader = answerCall({
+  async POST({ actor, request, params }) {
+    const { siftId } = await accessSift(actor, "compute", params.id ?? "");
+    const { frames } = await readJson(request, bodySchema);
+    const matrix = await askForMatrix({ actor, siftId, frames });
+    return json(matrix, { status: 202, location: `/files/matrices/${matrix.id}` });
+  },
+});
+export const action = loader;
