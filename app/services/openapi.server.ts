@@ -161,6 +161,15 @@ const columnsBody = {
 };
 
 const columnCalls = {
+  "/ensembles/{id}/comparison": {
+    get: call("compare", "Two levels of theory on the same frames", {
+      requestParams: { path, query: api.comparisonQuerySchema },
+      responses: {
+        "200": json(api.comparisonSchema, "The comparison"),
+        "409": problem("The sift is not done"),
+      },
+    }),
+  },
   "/ensembles/{id}/columns": {
     post: call("addColumns", "Add energies or properties from a table or a second structure file", {
       requestParams: { path },

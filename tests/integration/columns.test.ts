@@ -351,3 +351,105 @@ describe("a second structure file", () => {
     expect(status).toBe(422);
   });
 });
+
+describe("the comparison of two levels", () => {
+  const compare = async (id: string, query: string) => {
+    const response = await call(`/api/v1/ensembles/${id}/comparison?${query}`, { token });
+    return { status: response.status, body: await response.json() };
+  };
+
+  it("of six conformers from a table gives every figure worked out by hand", async () => {
+    const { id } = await ensemble(6);
+    const rows = [0.3, 0, 1.4, 1.1, 2.9, 2.5].map((a, k) => `${k + 1},${a},${[0, 0.4, 0.9, 1.5, 2.2, 3][k]}`);
+    await add(id, table(`frame,cheap [kcal/mol],reference [kcal/mol]\n${rows.join("\n")}\n`));
+    const { body } = await compare(id, "level=cheap&reference=reference");
+    expect(body).toMatchObject({
+      n: 6,
+      align: "least-squares",
+      temperature: 298.15,
+      sift: null,
+      maxFrame: 2,
+    });
+    const figures = [
+      body.mad,
+      body.rmsd,
+      body.max,
+      body.pearson,
+      body.spearman,
+      body.kendall,
+      body.populationOverlap,
+    ];
+    [0.46667, 0.48189, 0.66667, 0.893959, 0.828571, 0.6, 0.69924].forEach((value, k) => {
+      expect(figures[k]).toBeCloseTo(value, 5);
+    });
+    expect(body.window).toEqual([
+      { share: 0.9, kcal: expect.closeTo(1.4, 9), count: 4 },
+      { share: 0.95, kcal: expect.closeTo(1.4, 9), count: 4 },
+      { share: 0.99, kcal: expect.closeTo(2.9, 9), count: 6 },
+    ]);
+    const own = await compare(id, "level=cheap&reference=reference&align=own-minimum");
+    expect(own.body.msd).toBeCloseTo(0.03333, 5);
+    expect(own.body.max).toBeCloseTo(0.7, 9);
+    const common = await compare(id, "level=cheap&reference=reference&align=common");
+    expect(common.body.msd).toBeCloseTo(-0.26667, 5);
+    expect(common.body.rmsd).toBeCloseTo(0.55076, 5);
+  });
+
+  it("says what it cannot tell: constant levels, few frames, unknown names", async () => {
+    const { id } = await ensemble(4);
+    await add(id, table("frame,flat [kcal/mol],three [kcal/mol]\n1,1,1\n2,1,2\n3,1,3\n4,1,NA\n"));
+    const flat = await compare(id, "level=flat&reference=MMFF94");
+    expect(flat.body).toMatchObject({ n: 4, pearson: null, spearman: null, kendall: null });
+    const three = await compare(id, "level=three&reference=MMFF94");
+    expect(three.body).toMatchObject({ n: 3, pearson: null, spearman: null, kendall: null });
+    for (const [query, field] of [
+      ["level=none&reference=MMFF94", "level"],
+      ["level=flat&reference=none", "reference"],
+      ["level=flat", "reference"],
+      ["reference=flat", "level"],
+      ["level=flat&reference=MMFF94&align=worst", "align"],
+      ["level=flat&reference=MMFF94&sift=aaaaaaaaaaaaaaaa", "sift"],
+      ["level=flat&reference=MMFF94&temperature=0", "temperature"],
+    ]) {
+      const { status, body } = await compare(id, query ?? "");
+      expect([status, body.errors?.[0]?.field], query).toEqual([422, field]);
+    }
+  });
+
+  it("with a sift takes its kept frames and their copies", async () => {
+    const { id } = await ensemble(6);
+    await add(id, table("frame,x [kcal/mol]\n1,0\n2,0.2\n3,1\n4,1.1\n5,2\n6,2.2\n"));
+    const sift = await sifted(token, id, { level: "MMFF94", energyTolerance: 0.6, rmsdTolerance: 5 });
+    expect(sift.result?.kept.length).toBeLessThan(6);
+    const { body } = await compare(id, `level=x&reference=MMFF94&sift=${sift.id}`);
+    expect(body).toMatchObject({ n: sift.result?.kept.length, sift: sift.id });
+  });
+
+  it("of the thousand frames of aminoester agrees with the independent program", async () => {
+    const sent = [{ name: "aminoester.xyz", content: reference("ensembles/aminoester.xyz") }];
+    const { id } = await takenIn(token, sent, { level: "MMFF94", energyUnit: "kcal/mol" });
+    const second = { name: "aminoester.uff.xyz", content: reference("ensembles/aminoester.uff.xyz") };
+    const added = await add(id, second, { level: "UFF", energyUnit: "kcal/mol" });
+    expect(added.body.columns).toMatchObject([{ name: "UFF", count: 1000, missing: 0 }]);
+    const expected = JSON.parse(
+      reference("ensembles/aminoester.expected.json").toString(),
+    ).two_level_A_uff_B_mmff94;
+    const { body } = await compare(id, "level=UFF&reference=MMFF94&align=own-minimum");
+    const own = expected.own_minimum_reference;
+    expect(body.n).toBe(1000);
+    expect(body.msd).toBeCloseTo(own.msd, 7);
+    expect(body.mad).toBeCloseTo(own.mad, 7);
+    expect(body.rmsd).toBeCloseTo(own.rmsd, 7);
+    expect(body.max).toBeCloseTo(own.max_abs, 7);
+    expect(body.maxFrame).toBe(own.max_abs_index + 1);
+    expect(body.pearson).toBeCloseTo(expected.pearson_r, 8);
+    expect(body.spearman).toBeCloseTo(expected.spearman_rho, 8);
+    expect(body.kendall).toBeCloseTo(expected.kendall_tau_b, 8);
+    const [at298] = expected.temperatures;
+    expect(body.populationOverlap).toBeCloseTo(at298.population_overlap, 8);
+    const windows = at298.window_at_A_keeping_B_population_kcal_mol;
+    expect(body.window.map(({ kcal }: { kcal: number }) => kcal)).toEqual(
+      ["0.9", "0.95", "0.99"].map((share) => expect.closeTo(windows[share], 7)),
+    );
+  });
+});

@@ -553,6 +553,58 @@ export const averagesQuerySchema = z.object({
   ),
 });
 
+export const comparisonQuerySchema = z.object({
+  level: z.string("Name the level that is compared.").min(1).max(200).meta({ description: "Id or name." }),
+  reference: z
+    .string("Name the reference level.")
+    .min(1)
+    .max(200)
+    .meta({ description: "Id or name; differences are level - reference." }),
+  sift: optional(id).meta(
+    shownAs(
+      { type: "string" },
+      "Id of a sift: its kept frames, weighted by its copies. Default: all accepted.",
+    ),
+  ),
+  temperature,
+  align: optional(z.enum(["own-minimum", "common", "least-squares", "median"])).meta(
+    shownAs(
+      {
+        type: "string",
+        enum: ["own-minimum", "common", "least-squares", "median"],
+        default: "least-squares",
+      },
+      "Which zero the two levels share; common is the reference's lowest frame.",
+    ),
+  ),
+});
+
+export const comparisonSchema = z
+  .object({
+    level: id,
+    reference: id,
+    temperature: z.number(),
+    align: z.enum(["own-minimum", "common", "least-squares", "median"]),
+    sift: id.nullable(),
+    n: z.number().int(),
+    msd: z.number().meta({ description: "kcal/mol, as all that follow; divided by n." }),
+    mad: z.number(),
+    rmsd: z.number(),
+    sd: z.number().nullable().meta({ description: "About the mean, n - 1." }),
+    max: z.number().meta({ description: "Absolute." }),
+    maxFrame: frameNumber,
+    pearson: z.number().nullable().meta({ description: "null for n < 4 or a constant level." }),
+    spearman: z.number().nullable(),
+    kendall: z.number().nullable().meta({ description: "tau-b" }),
+    populationOverlap: z.number(),
+    jensenShannon: z.number().meta({ description: "Bits." }),
+    window: z
+      .array(z.object({ share: z.number(), kcal: z.number(), count: z.number().int() }))
+      .meta({ description: "Taken at level: the window that holds that share of the reference population." }),
+  })
+  .meta({ id: "Comparison" });
+export type ComparisonAnswer = z.infer<typeof comparisonSchema>;
+
 export const exportQuerySchema = z.object({ temperature });
 
 export const populationsSchema = z
