@@ -51,6 +51,21 @@ export async function signIn(page: Page, who: "owner" | "analyst" | "reader" | "
   await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);
 }
 
+/** A new person by open sign-up, signed in: owner of a team of their own. */
+export async function signUp(page: Page, name: string, email: string): Promise<void> {
+  const password = "seven brown kettles sing";
+  await page.goto("/sign-up");
+  await page.getByLabel("Name, as the logbook shows it").fill(name);
+  await page.getByLabel("Address").fill(email);
+  await page.getByLabel("Password").fill(password);
+  await page.getByRole("button", { name: "Sign up" }).click();
+  await page.waitForURL(/\/login\?signed-up$/);
+  await page.getByLabel("Address").fill(email);
+  await page.getByLabel("Password").fill(password);
+  await page.getByRole("button", { name: "Sign in" }).click();
+  await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);
+}
+
 /** Fails on what axe finds serious or critical, by rule and element. */
 export async function expectAccessible(page: Page): Promise<void> {
   const found = await new AxeBuilder({ page })

@@ -1,4 +1,4 @@
-import { DEMO_PASSWORD, expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { DEMO_PASSWORD, expect, expectAccessible, hydrated, signIn, signUp, test } from "./base";
 
 test.describe("the doors", () => {
   test("let the analyst in by keyboard alone, and out again", async ({ page }) => {
@@ -31,12 +31,7 @@ test.describe("the doors", () => {
   });
 
   test("open a team of one's own to a new user", async ({ page }) => {
-    await page.goto("/sign-up");
-    await page.getByLabel("Name, as the logbook shows it").fill("Ada Quist");
-    await page.getByLabel("Address").fill(`ada.${Date.now()}@lab.example`);
-    await page.getByLabel("Password").fill("seven brown kettles sing");
-    await page.getByRole("button", { name: "Sign up" }).click();
-    await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);
+    await signUp(page, "Ada Quist", `ada.${Date.now()}@lab.example`);
     await expect(page.getByText("Ada Quist's team").first()).toBeVisible();
   });
 

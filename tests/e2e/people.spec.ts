@@ -1,17 +1,12 @@
 import { type Browser, type BrowserContext, type Page, expect as plainExpect } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { expect, expectAccessible, hydrated, signIn, signUp, test } from "./base";
 
 // A wrong password is among what is tried.
 test.use({ allowRefusals: true });
 
 /** A new person in a browser of their own, by open sign-up: owner of a team of their own. */
 async function newOwner(page: Page, name: string, email: string): Promise<string> {
-  await page.goto("/sign-up");
-  await page.getByLabel("Name, as the logbook shows it").fill(name);
-  await page.getByLabel("Address").fill(email);
-  await page.getByLabel("Password").fill("seven brown kettles sing");
-  await page.getByRole("button", { name: "Sign up" }).click();
-  await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);
+  await signUp(page, name, email);
   return page.url();
 }
 

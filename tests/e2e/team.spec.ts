@@ -1,7 +1,7 @@
 import { randomUUID } from "node:crypto";
 import path from "node:path";
 import type { Page } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { expect, expectAccessible, hydrated, signIn, signUp, test } from "./base";
 
 const FILES = path.join(import.meta.dirname, "../../fixtures/reference/ensembles");
 const ENSEMBLE = path.join(FILES, "difluoroethane.xyz");
@@ -10,12 +10,7 @@ const WATER = "3\nwater\nO 0 0 0\nH 0.96 0 0\nH -0.24 0.93 0\n";
 
 /** A new person with a team of their own, so that tests do not meet in one table. */
 async function ownTeam(page: Page): Promise<void> {
-  await page.goto("/sign-up");
-  await page.getByLabel("Name, as the logbook shows it").fill("Walker");
-  await page.getByLabel("Address").fill(`walker.${randomUUID()}@lab.example`);
-  await page.getByLabel("Password").fill("seven brown kettles sing");
-  await page.getByRole("button", { name: "Sign up" }).click();
-  await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);
+  await signUp(page, "Walker", `walker.${randomUUID()}@lab.example`);
   await hydrated(page);
 }
 

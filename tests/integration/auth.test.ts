@@ -270,10 +270,10 @@ describe("signing up", () => {
     expect(await db.$count(users)).toBe(before);
   });
 
-  it("makes a team of one's own and signs in", async () => {
+  it("makes a team of one's own, which its owner then signs in to", async () => {
     withEnv({ OPEN_SIGN_UP: true });
     const answer = await call("/sign-up", { form: person });
-    expect(answer.status).toBe(303);
+    expect([answer.status, answer.headers.get("location")]).toEqual([303, "/login?signed-up"]);
     const [row] = await db
       .select({ email: users.email, role: members.role, team: teams.id })
       .from(users)
@@ -281,20 +281,29 @@ describe("signing up", () => {
       .innerJoin(teams, eq(teams.id, members.teamId))
       .where(eq(users.email, "ada@lab.example"));
     expect(row).toMatchObject({ role: "owner" });
-    expect(answer.headers.get("location")).toBe(`/teams/${row?.team}`);
-    expect((await call("/login", { cookie: cookieOf(answer) ?? "" })).status).toBe(302);
+    expect(await (await call("/login?signed-up")).text()).toContain("Your account is open");
+    const signedIn = await call("/login", { form: { email: person.email, password: person.password } });
+    expect(signedIn.status).toBe(303);
+    expect((await call("/login", { cookie: cookieOf(signedIn) ?? "" })).status).toBe(302);
   });
 
-  it("tells nobody who tries a known address, but the owner of it", async () => {
+  it("answers a known address as a new one, and tells its owner alone", async () => {
     withEnv({ OPEN_SIGN_UP: true });
     const user = await makeUser();
-    const answer = await call("/sign-up", { form: { ...person, email: user.email } });
-    expect(answer.status).toBe(422);
-    expect(cookieOf(answer)).toBeNull();
+    const told = async (email: string) => {
+      const answer = await call("/sign-up", { form: { ...person, email } });
+      const own = ["x-request-id", "content-security-policy", "date"];
+      const headers = [...answer.headers].filter(([name]) => !own.includes(name));
+      return { status: answer.status, headers, body: await answer.text() };
+    };
+    expect(await told(user.email)).toEqual(await told("nobody.yet@lab.example"));
     await settleBackground();
     const letters = await db.select().from(mailQueue).where(eq(mailQueue.recipient, user.email));
     expect(letters).toHaveLength(1);
     expect(await db.$count(users, eq(users.email, user.email))).toBe(1);
+    expect((await call("/login", { form: { email: user.email, password: "not the old one" } })).status).toBe(
+      422,
+    );
   });
 
   it("names each field at fault and keeps what was typed, but for the password", async () => {

@@ -24,7 +24,12 @@ const target = (url: URL) => ownPath(url.searchParams.get("to"), href("/teams"))
 
 export function loader({ context, url }: Route.LoaderArgs) {
   if (context.get(actorContext).kind === "user") throw redirect(target(url));
-  return { openSignUp: env().OPEN_SIGN_UP, changed: url.searchParams.has("changed") };
+  const { searchParams } = url;
+  return {
+    openSignUp: env().OPEN_SIGN_UP,
+    changed: searchParams.has("changed"),
+    signedUp: searchParams.has("signed-up"),
+  };
 }
 
 export async function action({ request, context, url }: Route.ActionArgs) {
@@ -50,6 +55,12 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
       {loaderData.changed ? (
         <Note tone="good">
           The password was changed and every open session ended. Sign in with the new one.
+        </Note>
+      ) : null}
+      {loaderData.signedUp && !actionData ? (
+        <Note tone="good">
+          Your account is open: sign in with the address and password that you chose. If the address had an
+          account before, nothing was changed, and a letter is on its way to it.
         </Note>
       ) : null}
       {actionData ? (

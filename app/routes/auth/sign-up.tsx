@@ -28,15 +28,15 @@ export async function action({ request, context }: Route.ActionArgs) {
     const form = await request.formData();
     const text = (name: string) => String(form.get(name) ?? "");
     const typed = { name: text("name"), email: text("email") };
-    let made: Awaited<ReturnType<typeof signUp>>;
     try {
-      made = await signUp({ ...typed, password: text("password"), caller });
+      await signUp({ ...typed, password: text("password"), caller });
     } catch (error) {
       return refuseForm(error, typed);
     }
+    // New or known, the address is answered alike: what follows is the door, not a room.
     await signOut(context.get(actorContext), caller.address);
-    context.get(cookieChangeContext).change = { secret: made.secret, stay: false };
-    return redirect(href("/teams/:team", { team: made.teamId }), 303);
+    context.get(cookieChangeContext).change = { secret: null, stay: false };
+    return redirect(`${href("/login")}?signed-up`, 303);
   });
 }
 
@@ -52,7 +52,7 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
     );
   }
   return (
-    <Door title="Sign up" lead="You get a team of your own, with you as its owner.">
+    <Door title="Sign up" lead="You get a team of your own, with you as its owner. Then sign in.">
       {actionData ? (
         <div role="alert">
           <Note tone="danger">{actionData.message}</Note>

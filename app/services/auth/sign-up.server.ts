@@ -4,14 +4,12 @@ import { newId } from "../../db/new-id.server.ts";
 import { members, teams, users } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { DomainError, type Fault } from "../../lib/errors.ts";
-import { inBackground } from "../background.server.ts";
 import { forbidden } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { queueMail } from "../mail/queue-mail.server.ts";
 import { hashPassword } from "./hash-password.server.ts";
 import { passwordFault } from "./password-rules.server.ts";
 import { type Caller, normalEmail, restingError } from "./sign-in.server.ts";
-import { startSession } from "./start-session.server.ts";
 import { addressRange, takeAttempt } from "./throttle.server.ts";
 
 const SIGN_UPS_AN_HOUR = 60;
@@ -34,21 +32,19 @@ function check(name: string, email: string, password: string): void {
   }
 }
 
-/** Tells the owner of the address; whoever tried learns only that it did not work. */
-function tellOwner(email: string): void {
-  inBackground("mail about a sign-up with a known address", () =>
-    queueMail({
-      recipient: email,
-      subject: "Somebody tried to sign up with your address",
-      body: `Somebody tried to open a Lowlying account with this address, which has one already. Nothing was changed.\n\nIf it was you, sign in, or reset the password:\n${env().APP_ORIGIN}/reset-password`,
-    }),
-  );
+/** Tells the owner of the address; whoever tried reads what everybody reads. */
+function tellOwner(email: string): Promise<void> {
+  return queueMail({
+    recipient: email,
+    subject: "Somebody tried to sign up with your address",
+    body: `Somebody tried to open a Lowlying account with this address, which has one already. Nothing was changed.\n\nIf it was you, sign in, or reset the password:\n${env().APP_ORIGIN}/reset-password`,
+  });
 }
 
 /**
- * Opens an account with a team of its own, owned by its user.
+ * Opens an account with a team of its own, owned by its user. A known address is answered alike, in words and in time:
+ * both ways hash the password and commit once, and nobody is signed in by this, since a session would tell.
  *
- * @returns the secret of a new session
  * @throws DomainError forbidden where sign-up is closed, invalid with `faults` by field
  */
 export async function signUp(options: {
@@ -56,12 +52,12 @@ export async function signUp(options: {
   email: string;
   password: string;
   caller: Caller;
-}): Promise<{ userId: string; teamId: string; secret: string }> {
+}): Promise<void> {
   if (!env().OPEN_SIGN_UP) throw forbidden("Sign-up is by invitation here. Ask an owner of your team.");
   const name = options.name.trim();
   const email = normalEmail(options.email);
   check(name, email, options.password);
-  const { address, userAgent } = options.caller;
+  const { address } = options.caller;
   const wait = await takeAttempt({
     kind: "sign-up",
     subject: addressRange(address),
@@ -74,24 +70,16 @@ export async function signUp(options: {
   const [userId, teamId, createdAt] = [newId(), newId(), new Date()];
   const team = `${name.slice(0, 110)}'s team`;
   try {
-    const secret = await inTransaction(async (tx) => {
+    await inTransaction(async (tx) => {
       const by = { userId, tokenId: null, origin: address };
       await tx.insert(users).values({ id: userId, email, name, passwordHash, createdAt });
       await tx.insert(teams).values({ id: teamId, name: team, createdAt });
       await tx.insert(members).values({ teamId, userId, role: "owner", createdAt });
       await writeEntry(tx, { teamId }, by, { type: "sign-up", data: {} });
       await writeEntry(tx, { teamId }, by, { type: "team-made", data: { name: team } });
-      return startSession({ userId, stay: false, userAgent }, tx);
     });
-    return { userId, teamId, secret };
   } catch (error) {
     if (!isDuplicate(error)) throw error;
-    tellOwner(email);
-    throw new DomainError(
-      "invalid",
-      "Not signed up",
-      "No account can be opened with this address. If it is yours, sign in or reset the password.",
-      { faults: [{ field: "email", message: "No account can be opened with this address." }] },
-    );
+    await tellOwner(email);
   }
 }
