@@ -15,7 +15,7 @@ export function EditionDownloads({
 }) {
   const packed = ["bundle.zip", "conformers.zip"];
   return (
-    <section aria-labelledby="edition-files">
+    <section className="min-w-0" aria-labelledby="edition-files">
       <EditionHead id="edition-files">Files of this edition</EditionHead>
       <ul className="mt-3 border-t border-rule">
         {edition.files.map(({ name, bytes, sha256 }) => (

@@ -19,6 +19,7 @@ import { EditionDownloads } from "./edition-downloads";
 import { EditionHead } from "./edition-head";
 import { PopulationTable } from "./population-table";
 import { Shapes } from "./shapes";
+import { StillPlots } from "./still-plots";
 
 /** An edition for somebody who decides with it: what was found, how sure, by which method, and the files. */
 export function EditionReport({
@@ -137,7 +138,10 @@ function Plots({ edition }: { edition: EditionView }) {
   const cumulative = cumulativePopulation(rows);
   return (
     <section className="mt-10" aria-label="Plots">
-      <div className="grid gap-x-10 gap-y-8 lg:grid-cols-2 print:grid-cols-1">
+      <noscript>
+        <StillPlots rows={rows} ladder={ladder} cumulative={cumulative} />
+      </noscript>
+      <div className="with-script grid gap-x-10 gap-y-8 lg:grid-cols-2 print:grid-cols-1">
         {ladder ? (
           <EnergyLadder
             rows={rows}
@@ -168,7 +172,7 @@ const NOBODY: ReadonlySet<number> = new Set();
 function Method({ edition }: { edition: EditionView }) {
   const [text, ...assumed] = edition.methods;
   return (
-    <section aria-labelledby="edition-method">
+    <section className="min-w-0" aria-labelledby="edition-method">
       <EditionHead id="edition-method">Method</EditionHead>
       <p className="figures mt-3 max-w-read text-base text-pretty">{text}</p>
       {assumed.map((line) => (
@@ -182,7 +186,7 @@ function Method({ edition }: { edition: EditionView }) {
         </CopyButton>
       </p>
       <h3 className="mt-5 text-sm font-semibold">To cite it</h3>
-      <p className="figures mt-1 max-w-read text-xs break-words text-ink-2">{edition.citations.text}</p>
+      <p className="figures mt-1 max-w-read text-xs break-all text-ink-2">{edition.citations.text}</p>
       {edition.level ? (
         <p className="figures mt-4 flex flex-wrap items-center gap-x-4 text-ink-2">
           <LevelName name={edition.level.name} ordinal={edition.level.ordinal} />

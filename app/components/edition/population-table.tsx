@@ -6,6 +6,8 @@ import { byPopulation, type ConformerRow } from "~/lib/workbench/conformers";
 import { EditionHead } from "./edition-head";
 
 const FIRST = 8;
+/** More would be a list, not a report: paper then says where the others stand. */
+const UNFOLDED_ON_PAPER = 32;
 
 /** Conformers with their populations, the first ones open, the rest unfolded where somebody asks and on paper. */
 export function PopulationTable({ edition }: { edition: EditionView }) {
@@ -24,7 +26,7 @@ export function PopulationTable({ edition }: { edition: EditionView }) {
       <div className="mt-3">
         <Rows rows={first} widest={widest} label="Conformers" head />
         {rest.length > 0 ? (
-          <details>
+          <details className={rest.length <= UNFOLDED_ON_PAPER ? "unfold" : ""}>
             <summary className="figures cursor-pointer border-b border-rule px-3 py-2 text-ink-2 max-sm:px-2">
               {formatCount(rest.length)} more
               {edition.temperature === null ? "" : `, ${formatPercent(left, 1)} together`} ·{" "}

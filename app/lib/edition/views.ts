@@ -51,6 +51,8 @@ export interface HandOverView {
   links: LinkRow[];
   /** What the next edition would bring, in words; null where nothing can be frozen yet. */
   next: { number: number; changed: string[]; findings: EditionFinding[] } | null;
+  /** Methods text of the distinct set shown, then a line an assumption; null where there is no set. */
+  methods: string[] | null;
   comparison: { before: number; after: number; result: EditionComparison } | null;
   /** Longest life of a link, days. */
   linkDays: number;

@@ -21,7 +21,7 @@ import {
 import { frameStrip } from "./frame-strip.ts";
 import { framesWords, groupFrames, reasonWords } from "./intake-lists.ts";
 import { energyLadder, mergeLabels } from "./ladder.ts";
-import { methodsText, recipeLine, requestOf } from "./recipe-words.ts";
+import { recipeLine, requestOf } from "./recipe-words.ts";
 import { clickSelection } from "./selection.ts";
 import { sortRows } from "./sort-rows.ts";
 import { stations } from "./stations.ts";
@@ -102,6 +102,7 @@ const ensemble: EnsembleView = {
   held: 3,
   openQuestions: 0,
   properties: 0,
+  torsions: [],
   chirality: "achiral",
   chiralityNote: "",
   example: false,
@@ -347,30 +348,6 @@ describe("recipe in words", () => {
       mirror: "auto",
       chirality: "chiral",
     });
-  });
-
-  test("the methods text claims only what was done", () => {
-    const options = {
-      ensemble,
-      recipe,
-      result,
-      energyKind: "electronic",
-      weights: { kind: "copies" },
-      temperatureK: 310,
-    } as const;
-    const text = methodsText(options).replaceAll(NBSP, " ");
-    expect(text).toContain(
-      "400 structures of C5H12 (17 atoms) were read; 397 were accepted and 3 held back.",
-    );
-    expect(text).toContain("its energy lay within 0.15 kcal/mol");
-    expect(text).toContain("Boltzmann populations at 310 K are from electronic energies");
-    const bare = methodsText({
-      ...options,
-      recipe: { ...recipe, level: null, levelName: null },
-      weights: null,
-    });
-    expect(bare).not.toContain("energy lay within");
-    expect(bare).not.toContain("Boltzmann");
   });
 });
 

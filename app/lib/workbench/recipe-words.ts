@@ -1,16 +1,6 @@
-import {
-  fixed,
-  formatCount,
-  formatEnergy,
-  formatRmsd,
-  formatTemperature,
-  plural,
-  withUnit,
-} from "../format.ts";
+import { formatEnergy, formatRmsd, formatTemperature, withUnit } from "../format.ts";
 import type { SiftRecipe, SiftRequest } from "../recipe/recipe.ts";
-import type { SiftResult } from "../recipe/result.ts";
-import { CONSTANTS_YEAR } from "../units.ts";
-import type { EnergyKind, EnsembleView } from "../views.ts";
+import type { EnergyKind } from "../views.ts";
 
 /** Atom sets as the page names them. */
 export const ATOM_SET_WORDS: Record<SiftRecipe["atoms"], string> = {
@@ -72,82 +62,4 @@ export function requestOf(recipe: SiftRecipe): SiftRequest {
 /** What "auto" does with mirror images. */
 export function autoMirror(chirality: "achiral" | "chiral"): "merge" | "keep" {
   return chirality === "achiral" ? "merge" : "keep";
-}
-
-/** One paragraph for a report, from what is stored: nothing that was not done is claimed. */
-export function methodsText(options: {
-  ensemble: EnsembleView;
-  recipe: SiftRecipe;
-  result: SiftResult;
-  energyKind: EnergyKind | null;
-  weights: { kind: "copies" | "degeneracy" } | null;
-  temperatureK: number;
-}): string {
-  const { ensemble, recipe, result } = options;
-  const sentences = [
-    `${plural(ensemble.frames, "structure")} of ${ensemble.formula} (${plural(ensemble.atoms, "atom")}) were read; ` +
-      `${formatCount(ensemble.accepted)} were accepted and ${ensemble.held === 0 ? "none" : formatCount(ensemble.held)} held back.`,
-    windowSentence(recipe, result),
-    ruleSentence(recipe),
-    mirrorSentence(recipe),
-    `This left ${plural(result.kept.length, "distinct conformer")} out of ${plural(result.kept.length + result.dropped.length, "structure")}.`,
-    weightsSentence(options),
-  ];
-  return sentences.filter((sentence) => sentence !== null).join(" ");
-}
-
-function windowSentence(recipe: SiftRecipe, result: SiftResult): string | null {
-  const parts: string[] = [];
-  if (recipe.window !== null)
-    parts.push(
-      `Structures more than ${withUnit(formatEnergy(recipe.window), "kcal/mol")} above the lowest were left out (${result.outsideWindow.length}).`,
-    );
-  if (result.withoutEnergy.length > 0)
-    parts.push(`${plural(result.withoutEnergy.length, "structure")} without an energy took no part.`);
-  return parts.length === 0 ? null : parts.join(" ");
-}
-
-function ruleSentence(recipe: SiftRecipe): string {
-  const order =
-    recipe.level === null
-      ? "in the order of the file"
-      : `in the order of their energies (${recipe.levelName}), from the lowest`;
-  const energy =
-    recipe.level === null || recipe.energyTolerance === null
-      ? ""
-      : `its energy lay within ${withUnit(formatEnergy(recipe.energyTolerance), "kcal/mol")} of it and `;
-  const atoms = {
-    heavy: "the heavy atoms",
-    "heavy+polarH": "the heavy atoms and the hydrogens on N, O, S and P",
-    all: "all atoms",
-  }[recipe.atoms];
-  const symmetry = recipe.symmetry
-    ? ", minimised over the automorphisms of the bonded graph"
-    : ", atoms compared in file order";
-  return (
-    `Repeats were removed ${order}: a structure was taken to repeat one already kept when ${energy}` +
-    `the root-mean-square deviation of ${atoms} after superposition by a proper rotation${symmetry}, ` +
-    `was at most ${withUnit(fixed(recipe.rmsdTolerance, 3), "Å")}.`
-  );
-}
-
-function mirrorSentence(recipe: SiftRecipe): string {
-  const taken = recipe.chiralityOverridden
-    ? `was taken as ${recipe.chirality} by choice`
-    : `is ${recipe.chirality}`;
-  return recipe.mirror === "merge"
-    ? `The molecule ${taken}; mirror images were counted as one conformer of degeneracy 2.`
-    : `The molecule ${taken}; mirror images were kept apart.`;
-}
-
-function weightsSentence(options: Parameters<typeof methodsText>[0]): string | null {
-  if (options.weights === null || options.energyKind === null) return null;
-  const by =
-    options.weights.kind === "copies"
-      ? "each conformer counted degeneracy over symmetry number times"
-      : "each conformer counted with its mirror degeneracy";
-  return (
-    `Boltzmann populations at ${withUnit(formatTemperature(options.temperatureK), "K")} are from ` +
-    `${ENERGY_KIND_WORDS[options.energyKind]}, ${by}; constants ${CONSTANTS_YEAR}.`
-  );
 }

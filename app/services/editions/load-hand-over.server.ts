@@ -53,22 +53,34 @@ async function findRows(at: At, links: readonly LinkRow[]): Promise<Row[]> {
   );
 }
 
+interface Shown {
+  siftId: string | null;
+  temperature: number;
+  weights: "auto" | "copies" | "degeneracy";
+}
+
+/** What an edition would say now; null without a finished sift of this ensemble. */
+async function draftOf(at: At, { siftId, temperature, weights }: Shown) {
+  if (siftId === null) return null;
+  const sift = await findSift(siftId);
+  if (sift.ensembleId !== at.ensembleId) return null;
+  const { ensemble, team } = await findEnsembleRow(at.teamId, at.ensembleId);
+  const content = await draftEdition({ ensemble, team: team.name, sift, temperature, weights });
+  return content && { content, current: sift.current };
+}
+
 async function nextOf(
   at: At,
   last: Row | undefined,
-  shown: { siftId: string | null; temperature: number; weights: "auto" | "copies" | "degeneracy" },
+  draft: Awaited<ReturnType<typeof draftOf>>,
 ): Promise<HandOverView["next"]> {
-  if (shown.siftId === null) return null;
-  const sift = await findSift(shown.siftId);
-  if (sift.ensembleId !== at.ensembleId || !sift.current) return null;
-  const { ensemble, team } = await findEnsembleRow(at.teamId, at.ensembleId);
-  const { temperature, weights } = shown;
-  const draft = await draftEdition({ ensemble, team: team.name, sift, temperature, weights });
-  if (draft === null) return null;
-  const findings = draft.findings.filter(({ kind }) => kind === "open");
-  if (last === undefined) return { number: 1, changed: [firstWords(draft)], findings };
+  // Only what stands on the frames as they are can be frozen.
+  if (draft === null || !draft.current) return null;
+  const { content } = draft;
+  const findings = content.findings.filter(({ kind }) => kind === "open");
+  if (last === undefined) return { number: 1, changed: [firstWords(content)], findings };
   const before = await findEdition(at.teamId, last.id);
-  return { number: last.number + 1, changed: compareEditions(before.content, draft).words, findings };
+  return { number: last.number + 1, changed: compareEditions(before.content, content).words, findings };
 }
 
 /** Two editions by their numbers, the earlier first; null where one of them is not there. */
@@ -92,23 +104,20 @@ async function linkDaysOf(teamId: string): Promise<number> {
  *
  * @param options.compare numbers of two editions
  */
-export async function loadHandOver(options: {
-  actor: Actor;
-  ensembleId: string;
-  siftId: string | null;
-  temperature: number;
-  weights: "auto" | "copies" | "degeneracy";
-  compare: readonly [number, number] | null;
-}): Promise<HandOverView> {
+export async function loadHandOver(
+  options: Shown & { actor: Actor; ensembleId: string; compare: readonly [number, number] | null },
+): Promise<HandOverView> {
   const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
   const now = new Date();
+  const draft = await draftOf(grant, options);
+  const methods = draft === null ? null : draft.content.words.methods.split("\n");
   const nothing = { editions: [], links: [], next: null, comparison: null, linkDays: 0, mayShare: false };
-  if (grant.role === "guest") return { ...nothing, now: now.toISOString() };
+  if (grant.role === "guest") return { ...nothing, methods, now: now.toISOString() };
   const mayShare = roleMay(grant.role, "share");
   const links = await findLinks(grant.teamId, grant.ensembleId, now);
   const rows = await findRows(grant, links);
   const [next, comparison, linkDays] = await Promise.all([
-    nextOf(grant, rows[0], options),
+    nextOf(grant, rows[0], draft),
     comparisonOf(grant, rows, options.compare),
     linkDaysOf(grant.teamId),
   ]);
@@ -116,6 +125,7 @@ export async function loadHandOver(options: {
     editions: rows.map(({ id: _id, ...row }) => row),
     links,
     next,
+    methods,
     comparison,
     linkDays,
     mayShare,

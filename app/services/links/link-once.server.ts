@@ -13,7 +13,7 @@ import { askForSift } from "../sifts/create-sift.server.ts";
 import { chooseSift, type FoundSift, findSift, findSiftsOf } from "../sifts/find-sift.server.ts";
 import { endLinkFor } from "./end-link.server.ts";
 import { isLinkSecret, linkSha } from "./link-secret.ts";
-import { makeLinkFor } from "./make-link.server.ts";
+import { makeLinkFor, needDays } from "./make-link.server.ts";
 
 const LOOK_MS = 250;
 /** A running instance takes a job within a heartbeat; after that this process does it itself. */
@@ -26,7 +26,12 @@ const NOBODY = { userId: null, tokenId: null };
 async function findTarget(ensembleId: string) {
   const rows = isId(ensembleId)
     ? await db
-        .select({ ensembleId: ensembles.id, teamId: ensembles.teamId, team: teams.name })
+        .select({
+          ensembleId: ensembles.id,
+          teamId: ensembles.teamId,
+          team: teams.name,
+          linkDays: teams.linkDays,
+        })
         .from(ensembles)
         .innerJoin(teams, eq(teams.id, ensembles.teamId))
         .where(and(eq(ensembles.id, ensembleId), isNull(ensembles.deletedAt)))
@@ -97,7 +102,9 @@ export async function linkOnce(options: {
   logbook: boolean;
 }): Promise<string> {
   try {
-    const at = await findTarget(options.ensembleId);
+    const { linkDays, ...at } = await findTarget(options.ensembleId);
+    // Said before an edition is frozen for nothing.
+    needDays(options.days, linkDays);
     const sift = await doneSift(at);
     const edition = await freezeFor(
       { ...at, ...NOBODY },

@@ -38,6 +38,13 @@ interface At extends Doer {
   editionId: string;
 }
 
+/** Refuses a life longer than the team allows. */
+export function needDays(days: number, most: number): void {
+  if (days <= most) return;
+  const message = `A link of this team lives at most ${most} days; an owner can change that on the team's page.`;
+  throw new DomainError("invalid", "Too long", message, { faults: [{ field: "days", message }] });
+}
+
 /**
  * Makes a link to an edition; access has been decided before.
  *
@@ -56,10 +63,7 @@ export async function makeLinkFor(at: At, asked: NewLink, now = new Date()): Pro
       .where(eq(editions.id, at.editionId));
     const row = rows[0];
     if (row === undefined) throw notFound();
-    if (asked.days > row.linkDays) {
-      const message = `A link of this team lives at most ${row.linkDays} days; an owner can change that on the team's page.`;
-      throw new DomainError("invalid", "Too long", message, { faults: [{ field: "days", message }] });
-    }
+    needDays(asked.days, row.linkDays);
     await tx.insert(links).values({
       id: newId(),
       teamId: at.teamId,
