@@ -245,7 +245,7 @@ export function ChartText({
 }
 
 /** Width of a letter of 12 px: how far left of a title that ends at the right its marker stands. */
-const LETTER = 6.1;
+const LETTER = 6.8;
 
 function AxisTitles({ x, y, height }: { x: Axis; y: Axis; height: number }) {
   const plot = usePlot();

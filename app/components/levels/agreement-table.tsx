@@ -57,16 +57,14 @@ export function AgreementTable({
           <tr>
             <Th>Measure</Th>
             <Th align="right">Value</Th>
-            <Th align="right" unit="within this ensemble">
-              95 % interval
-            </Th>
+            <Th align="right">95 % interval</Th>
             <Th className="max-sm:hidden">Unit</Th>
           </tr>
         </thead>
         <tbody>
           {rows.map((row) => (
             <Tr key={row.name} data-measure={row.name}>
-              <Td wrap>
+              <Td wrap className="w-full">
                 {row.label}
                 {row.unit ? <span className="text-ink-3 sm:hidden">, {row.unit}</span> : null}
                 {row.note ? <span className="block text-xs text-ink-3">{row.note}</span> : null}
@@ -178,7 +176,7 @@ function agreementRows({ comparison, paired }: Comparison): Row[] {
       digits: 2,
       unit: kcal,
       formula: <>MSD = Σ d / n, {d}</>,
-      interval: "msd",
+      ...(c.align === "least-squares" ? { note: "0 by this choice of zero" } : { interval: "msd" as const }),
     },
     {
       label: "Mean absolute deviation",
@@ -229,7 +227,7 @@ function agreementRows({ comparison, paired }: Comparison): Row[] {
     ...(pairs
       ? [
           {
-            label: "Between two conformers, mean",
+            label: "Between two, mean",
             name: "Mean absolute difference of pairs",
             value: pairs.meanAbsolute,
             digits: 2,
@@ -241,7 +239,7 @@ function agreementRows({ comparison, paired }: Comparison): Row[] {
             ),
           },
           {
-            label: "Between two conformers, root mean square",
+            label: "Between two, root mean square",
             name: "Root mean square difference of pairs",
             value: pairs.rms,
             digits: 2,
@@ -309,7 +307,7 @@ function agreementRows({ comparison, paired }: Comparison): Row[] {
       note: `root ${fixed(Math.sqrt(c.jensenShannon), 3)}`,
     },
     {
-      label: "Divergence of the reference from the level",
+      label: "Kullback-Leibler divergence",
       name: "Kullback-Leibler divergence of the reference from the level",
       value: c.klReferenceLevel,
       digits: 3,

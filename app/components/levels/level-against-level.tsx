@@ -8,8 +8,8 @@ import type { Comparison } from "./use-comparison";
 const ZERO_WORDS = {
   "least-squares": "mean offset",
   median: "median offset",
-  "own-minimum": "own minima",
-  common: "one conformer at zero",
+  "own-minimum": "difference of the lowest",
+  common: "difference at the common conformer",
 } as const;
 
 /** Relative energy at one level against the other, with the line of equal energies and the level's error about it. */
@@ -47,11 +47,15 @@ export function LevelAgainstLevel({
     <ChartFrame
       title="Level against level"
       fileName="level-against-level"
-      note={
+      note={[
+        `Line: equal energies, ${ZERO_WORDS[comparison.align]} of ${formatEnergy(offset)} taken off.`,
+        comparison.sd === null ? null : `Band: ± ${formatEnergy(comparison.sd)}, one standard deviation.`,
         left > 0
-          ? `${plural(left, "conformer")} outside the figure, or of lower population than the ${drawn.length} drawn; all stand in the table.`
-          : undefined
-      }
+          ? `${plural(left, "conformer")} outside the figure, or less populated than the ${drawn.length} drawn; all stand in the table.`
+          : null,
+      ]
+        .filter(Boolean)
+        .join(" ")}
       data={{
         columns: [
           { name: "conformer" },
@@ -86,13 +90,7 @@ export function LevelAgainstLevel({
           }))}
         onChoose={onChoose}
       >
-        <LineLayer
-          offset={offset}
-          band={comparison.sd ?? 0}
-          window={window.kcal}
-          top={top}
-          words={ZERO_WORDS[comparison.align]}
-        />
+        <LineLayer offset={offset} band={comparison.sd ?? 0} window={window.kcal} top={top} />
         <PairLayer
           points={drawn}
           x={(p) => p.level}
@@ -116,13 +114,11 @@ function LineLayer({
   band,
   window,
   top,
-  words,
 }: {
   offset: number;
   band: number;
   window: number;
   top: number;
-  words: string;
 }) {
   const plot = usePlot();
   if (!plot) return null;
@@ -165,12 +161,6 @@ function LineLayer({
           window {formatEnergy(window)}
         </ChartText>
       ) : null}
-      <ChartText x={plot.right - 4} y={plot.bottom - 24} end halo>
-        line: {words} {formatEnergy(offset)}
-      </ChartText>
-      <ChartText x={plot.right - 4} y={plot.bottom - 8} end halo>
-        band: ± {formatEnergy(band)}
-      </ChartText>
     </g>
   );
 }

@@ -64,12 +64,20 @@ export function energyTop(values: readonly number[], needed: number): number {
   return Math.max(0.5, 1.06 * Math.min(all, Math.max(most, 1.1 * needed)));
 }
 
-/** Label places that do not lie on each other, in pixels. */
-export function apart<P extends { x: number; y: number }>(labels: readonly P[]): P[] {
+/** Width of a letter of 12 px. */
+const LETTER_PX = 7;
+
+/** Labels that do not lie on each other, in pixels; of two that would, the first stays. */
+export function apart<P extends { x: number; y: number; text: string }>(labels: readonly P[]): P[] {
   const kept: P[] = [];
   for (const label of labels) {
-    if (kept.every((other) => Math.abs(other.x - label.x) > 30 || Math.abs(other.y - label.y) > 14))
-      kept.push(label);
+    const clear = kept.every(
+      (other) =>
+        Math.abs(other.y - label.y) > 14 ||
+        label.x > other.x + LETTER_PX * other.text.length + 6 ||
+        other.x > label.x + LETTER_PX * label.text.length + 6,
+    );
+    if (clear) kept.push(label);
   }
   return kept;
 }

@@ -194,7 +194,7 @@ function StepRow({
 }) {
   const known = levels.find((level) => level.id === step.level) ?? null;
   return (
-    <Tr className="align-top">
+    <Tr>
       <Td wrap>
         <span className="flex items-center gap-2">
           {known ? <LevelMarker ordinal={known.ordinal} /> : null}

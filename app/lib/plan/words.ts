@@ -1,4 +1,5 @@
 import {
+  capital,
   fixed,
   formatCount,
   formatEnergy,
@@ -146,7 +147,7 @@ function hoursWords(source: HoursSource, exponent: number | null, fitted: boolea
   if (source.from === "timings") return `Mean of ${plural(source.hours.length, "finished one")}.`;
   if (source.from === "rule") {
     const rule = RULES.find(({ id }) => id === source.rule);
-    return `${rule?.label ?? source.rule}: common practice, no source, scaled to ${plural(atoms, "atom")} by the power ${trimmed(exponent, 2)}.`;
+    return `${capital(rule?.label ?? source.rule)}: common practice, no source, scaled to ${plural(atoms, "atom")} by the power ${trimmed(exponent, 2)}.`;
   }
   const sizes = source.timings.map((t) => formatCount(t.atoms)).join(", ");
   return `From timings at ${sizes} atoms, ${fitted ? "fitted" : "typed"} power ${trimmed(exponent, 2)} of the size.`;
