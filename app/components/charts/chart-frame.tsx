@@ -47,11 +47,11 @@ export function ChartFrame({
   const head = data.columns.map((column) => (column.unit ? `${column.name} [${column.unit}]` : column.name));
   return (
     <figure className={`min-w-0 ${className}`} aria-labelledby={id}>
-      <figcaption className="mb-2 flex items-baseline justify-between gap-3">
+      <figcaption className="mb-2 flex flex-wrap items-baseline justify-between gap-x-3">
         <h3 id={id} className="text-sm font-semibold">
           {title}
         </h3>
-        <span className="-my-1 flex gap-2 text-xs">
+        <span className="-my-1 flex flex-wrap gap-x-2 text-xs pointer-coarse:gap-x-0">
           <TextButton
             className={TOOL}
             aria-expanded={open}

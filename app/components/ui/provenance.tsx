@@ -25,8 +25,12 @@ export interface Source {
 }
 
 const HOVER_MS = 300;
-/** Kept free around a popover; above it the rail, which stays in sight. */
+/** Kept free around a popover: below, and above, where the rail stays in sight. */
 const ROOM = { top: 84, right: 16, bottom: 16, left: 16 } as const;
+/** Less than this below the figure, and more above it, sends the popover up; else it scrolls inside of itself. */
+const ENOUGH_PX = 240;
+/** More than any window: the popover does not change sides by itself, as it would to lie over the rail. */
+const NEVER = 100_000;
 /** One popover at a time: opening one closes the other. */
 let closeOpen: (() => void) | null = null;
 
@@ -47,7 +51,12 @@ export function Provenance({ children, ...source }: Source & { children: ReactNo
   const byClick = useRef(false);
   const close = useRef(() => setOpen(false));
 
+  const [side, setSide] = useState<"bottom" | "top">("bottom");
+
   const show = () => {
+    const { top, bottom } = anchor.current.getBoundingClientRect();
+    const below = window.innerHeight - bottom - ROOM.bottom;
+    setSide(below >= ENOUGH_PX || below >= top - ROOM.top ? "bottom" : "top");
     if (closeOpen !== close.current) closeOpen?.();
     closeOpen = close.current;
     setOpen(true);
@@ -110,7 +119,8 @@ export function Provenance({ children, ...source }: Source & { children: ReactNo
           ref={content}
           tabIndex={-1}
           sideOffset={8}
-          collisionPadding={ROOM}
+          side={side}
+          collisionPadding={{ ...ROOM, [side === "bottom" ? "top" : "bottom"]: NEVER }}
           align="start"
           aria-label={`Where this number comes from: ${source.name}`}
           className="figures z-40 max-h-(--radix-popover-content-available-height) w-96 max-w-[calc(100vw-2rem)] overflow-y-auto rounded-md border border-rule-2 bg-sheet p-4 text-sm text-ink shadow-float"

@@ -1,6 +1,9 @@
-import { type KeyboardEvent, useId, useRef, useState } from "react";
+import { type KeyboardEvent, useEffect, useId, useRef, useState } from "react";
 import { Field, type FieldNotes } from "./field";
 import { NumberField } from "./number-field";
+
+/** A pause after the last arrow key this long is a release: one walk by key is one step of the browser's history. */
+const KEY_PAUSE_MS = 400;
 
 /**
  * A slider and its field. Results follow while the thumb moves (`onChange`); the address is written on release
@@ -59,16 +62,31 @@ export function SliderField({
     moved.current = inside;
     onChange(inside);
   };
+  const pause = useRef<ReturnType<typeof setTimeout> | undefined>(undefined);
+  const commit = useRef(onCommit);
+  useEffect(() => {
+    commit.current = onCommit;
+  });
+  useEffect(() => () => clearTimeout(pause.current), []);
   const release = () => {
+    clearTimeout(pause.current);
     if (moved.current === null) return;
-    onCommit(moved.current);
+    const value = moved.current;
     moved.current = null;
+    commit.current(value);
+  };
+  const releaseLater = () => {
+    clearTimeout(pause.current);
+    pause.current = setTimeout(release, KEY_PAUSE_MS);
   };
   const onKeyDown = (event: KeyboardEvent) => {
     const steps = { ArrowRight: 1, ArrowUp: 1, ArrowLeft: -1, ArrowDown: -1, PageUp: 10, PageDown: -10 }[
       event.key
     ];
-    if (steps !== undefined) move(shown + steps * step);
+    clearTimeout(pause.current);
+    // Counted from where the last key led: the page may follow later than the next key comes.
+    const from = moved.current ?? shown;
+    if (steps !== undefined) move(from + steps * step);
     else if (event.key === "Home") move(min);
     else if (event.key === "End") move(max);
     else return;
@@ -96,7 +114,7 @@ export function SliderField({
             className="slider-thumb absolute inset-0 m-0 size-full"
             onChange={(event) => move(Number(event.currentTarget.value))}
             onKeyDown={onKeyDown}
-            onKeyUp={release}
+            onKeyUp={releaseLater}
             onPointerUp={release}
             onBlur={release}
           />

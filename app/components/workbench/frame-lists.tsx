@@ -99,7 +99,7 @@ function FrameList({
   const shown = all ? groups : groups.slice(0, FIRST_GROUPS);
   return (
     <section className="min-w-0">
-      <div className="flex flex-wrap items-center gap-3">
+      <div className="flex min-h-7 flex-wrap items-center gap-3">
         <h3 className="text-sm font-semibold">{title}</h3>
         {badge}
         {tool ? <span className="ml-auto">{tool}</span> : null}

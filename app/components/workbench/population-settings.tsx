@@ -49,8 +49,10 @@ export function PopulationSettings() {
         wrong={`A temperature from ${TEMPERATURE_RANGE_K[0]} to ${TEMPERATURE_RANGE_K[1]} K, for example 298.15.`}
         onChange={slideTemperature}
         onCommit={(value) => {
-          slideTemperature(null);
-          change({ temperatureK: value }, { gradual: true });
+          // What was slid to stands until the address says it too.
+          void change({ temperatureK: value }, { gradual: true }).then(() =>
+            slideTemperature((slid) => (slid === value ? null : slid)),
+          );
         }}
       />
       <NumberField

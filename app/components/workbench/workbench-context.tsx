@@ -1,6 +1,8 @@
 import {
   createContext,
+  type Dispatch,
   type ReactNode,
+  type SetStateAction,
   useCallback,
   useContext,
   useDeferredValue,
@@ -37,7 +39,7 @@ export interface Workbench {
   change: ChangeState;
   /** Follows the slider before the address does. */
   temperatureK: number;
-  slideTemperature: (temperatureK: number | null) => void;
+  slideTemperature: Dispatch<SetStateAction<number | null>>;
   populations: DistinctPopulations | null;
   rows: readonly ConformerRow[];
   roles: ReadonlyMap<number, FrameRole>;

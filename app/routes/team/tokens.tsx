@@ -95,7 +95,7 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
           {tokens.length > 0 ? (
             <TokenTable tokens={tokens} team={team.id} now={now} />
           ) : (
-            <StatePanel title="No tokens yet">
+            <StatePanel level="h2" title="No tokens yet">
               Make one to send files from a batch job, or to read results from a script.
             </StatePanel>
           )}
