@@ -1,4 +1,5 @@
 import type { IntakeMessage, IntakeQuestion } from "./intake/report.ts";
+import type { LogbookKind } from "./logbook/kinds.ts";
 import type { SiftRecipe } from "./recipe/recipe.ts";
 import type { SiftResult } from "./recipe/result.ts";
 
@@ -57,6 +58,8 @@ export interface EnsembleView {
   levels: LevelView[];
   /** Property columns: what can be averaged. */
   properties: number;
+  /** Torsions that were made columns, atoms from 0: they label the shape of a conformer. */
+  torsions: { id: string; name: string; atoms: number[] }[];
   files: FileView[];
   createdAt: string;
   changedAt: string;
@@ -137,9 +140,14 @@ export interface LogbookRow {
   id: number;
   at: string;
   who: string;
-  /** Person, token or the product itself. */
-  by: "person" | "token" | "product";
+  /** Person, token, the holder of a link, or the product itself. */
+  by: "person" | "token" | "link" | "product";
+  /** From where it was done. */
+  from: "browser" | "API" | "guest" | "server";
   type: string;
+  kind: LogbookKind;
+  /** Name of the ensemble it is about. */
+  ensemble: string | null;
   /** One sentence. */
   text: string;
   detail: string | null;

@@ -52,7 +52,11 @@ function Filled({ found, error }: { found: Trust; error: Parameters<typeof Error
   const order = useMemo(() => rows.map((row) => row.frame), [rows]);
   const hits = useMemo(() => (result?.kept ?? []).map((conformer) => conformer.found), [result]);
   const temperatures = useMemo(
-    () => [...new Set([200, 250, 300, 350, 400, temperatureK])].sort((a, b) => a - b),
+    () =>
+      [
+        ...[200, 250, 300, 350, 400].filter((kelvin) => Math.abs(kelvin - temperatureK) > 5),
+        temperatureK,
+      ].sort((a, b) => a - b),
     [temperatureK],
   );
   const free = weighed.level.energyKind === "free";

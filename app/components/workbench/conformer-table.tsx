@@ -5,6 +5,7 @@ import { flushSync } from "react-dom";
 import { href, useLocation } from "react-router";
 import { Button, buttonClass, IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
+import { FilterSelect } from "~/components/ui/select-field";
 import { Skeleton } from "~/components/ui/skeleton";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
@@ -29,6 +30,7 @@ import { type SortColumn, sortRows } from "~/lib/workbench/sort-rows";
 import { toTsv } from "~/lib/workbench/tsv";
 import { PopulationBar } from "./population-bar";
 import { useRowFocus } from "./table-grid";
+import type { ShapeColumn } from "./use-shape";
 import { useWorkbench } from "./workbench-context";
 
 /** Rows before "show all": what matters is among them, and the page stays short. */
@@ -47,7 +49,14 @@ export interface MeasureColumn {
 }
 
 /** The distinct set: energies, populations, copies, what was found, and how far each lies from the selected one. */
-export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
+export function ConformerTable({
+  measure,
+  shape = null,
+}: {
+  measure: MeasureColumn | null;
+  /** Labels by chosen torsions, which the table can be narrowed to. */
+  shape?: ShapeColumn | null;
+}) {
   const { rows, sift, state, change, selected, select, column, reference, level, measured } = useWorkbench();
   const [all, setAll] = useState(false);
   const id = useId();
@@ -55,9 +64,15 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
     () => (column ? Array.from(column.rmsd, (value, k) => (k < column.known ? value : undefined)) : null),
     [column],
   );
+  const only = shape?.only ?? null;
+  const labels = shape?.labels;
+  const narrowed = useMemo(
+    () => (only === null ? rows : rows.filter((row) => labels?.[row.index] === only)),
+    [rows, only, labels],
+  );
   const sorted = useMemo(
-    () => sortRows(rows, state.sort, { rmsd, measure: measure?.values ?? null }),
-    [rows, state.sort, rmsd, measure],
+    () => sortRows(narrowed, state.sort, { rmsd, measure: measure?.values ?? null }),
+    [narrowed, state.sort, rmsd, measure],
   );
   const order = useMemo(() => sorted.map((row) => row.frame), [sorted]);
   const widest = useMemo(() => rows.reduce((most, row) => Math.max(most, row.population ?? 0), 0), [rows]);
@@ -127,7 +142,27 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
 
   return (
     <section aria-labelledby={id} className="mt-9">
-      <BlockHead id={id} title={plural(rows.length, "conformer")}>
+      <BlockHead
+        id={id}
+        title={
+          only === null
+            ? plural(rows.length, "conformer")
+            : `${formatCount(narrowed.length)} of ${plural(rows.length, "conformer")}: ${only}`
+        }
+      >
+        {shape ? (
+          <FilterSelect
+            label={`Shape by ${shape.words}`}
+            active={only !== null}
+            className="print:hidden noscript:hidden"
+            value={only ?? ""}
+            onChange={(event) => shape.narrow(event.currentTarget.value || null)}
+            choices={[
+              { value: "", label: "Shape: any" },
+              ...shape.kinds.map(({ label, count }) => ({ value: label, label: `${label} (${count})` })),
+            ]}
+          />
+        ) : null}
         <Button size="sm" icon={<Copy aria-hidden="true" />} onClick={copy}>
           Copy
         </Button>
@@ -192,6 +227,7 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
                   awaited={measured.has(row.frame)}
                   bound={column?.exact[row.index] === 0 && (rmsd?.[row.index] ?? undefined) !== undefined}
                   measure={measure}
+                  shape={labels?.[row.index] ?? null}
                   selected={chosen.has(row.frame)}
                   tabbed={index === active}
                   onFocus={setActive}
@@ -202,7 +238,7 @@ export function ConformerTable({ measure }: { measure: MeasureColumn | null }) {
             {after > 0 ? <Spacer height={after} /> : null}
           </tbody>
           <tfoot className="print:table-row-group">
-            <SumRow rest={rest} rows={rows} />
+            <SumRow rest={rest} rows={narrowed} />
           </tfoot>
         </Table>
       </div>
@@ -298,6 +334,7 @@ const ConformerLine = memo(function ConformerLine({
   awaited,
   bound,
   measure,
+  shape,
   selected,
   tabbed,
   onFocus,
@@ -312,6 +349,8 @@ const ConformerLine = memo(function ConformerLine({
   awaited: boolean;
   bound: boolean;
   measure: MeasureColumn | null;
+  /** Label by chosen torsions. */
+  shape: string | null;
   selected: boolean;
   tabbed: boolean;
   onFocus: (index: number) => void;
@@ -351,6 +390,7 @@ const ConformerLine = memo(function ConformerLine({
               {open ? <ChevronDown aria-hidden="true" /> : <ChevronRight aria-hidden="true" />}
             </IconButton>
             <b className="font-semibold">{row.name}</b>
+            {shape === null ? null : <span className="ml-1 text-xs text-ink-3">{shape}</span>}
           </span>
         </Td>
         <Td align="right" className={MID}>

@@ -22,6 +22,7 @@ import { ConformerTable, type MeasureColumn } from "./conformer-table";
 import { PopulationSettings } from "./population-settings";
 import { OutdatedNote, SectionState } from "./section-state";
 import { ThermoFigures } from "./thermo-figures";
+import { useShape } from "./use-shape";
 import { MAX_MEASURED, useWorkbench } from "./workbench-context";
 
 /** Populations at a temperature: what carries the ensemble, its thermodynamics, four figures, and the table. */
@@ -207,7 +208,8 @@ function Distribution({ onChoose }: { onChoose: Choose }) {
 
 function Table() {
   const measure = useMeasure();
-  return <ConformerTable measure={measure} />;
+  const shape = useShape();
+  return <ConformerTable measure={measure} shape={shape} />;
 }
 
 /** The picked quantity in every conformer whose coordinates are here. */

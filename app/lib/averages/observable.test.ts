@@ -15,7 +15,7 @@ import {
 } from "./observable.ts";
 import { ParityGroup } from "./parity-group.ts";
 import { initialRule, isPseudoscalar, possibleRules, ruleOf } from "./rule.ts";
-import { mirrorLabel, shapeLabel, torsionLabel } from "./torsion-label.ts";
+import { mirrorLabel, pairLabel, shapeLabel, torsionLabel } from "./torsion-label.ts";
 
 const { frames, graph } = readReference("ensembles/tosylamide.sdf", "ensembles/tosylamide");
 const first = frames.block.positions.subarray(0, 96);
@@ -179,6 +179,11 @@ describe("labels of torsions", () => {
   it("are joined for a conformer, and turn their signs in the mirror", () => {
     expect(shapeLabel([178, 62, -58])).toBe("t g+ g\u2212");
     expect(mirrorLabel("t g+ g\u2212")).toBe("t g\u2212 g+");
+    expect([pairLabel("t g\u2212 g+"), pairLabel("t g+ g+"), pairLabel("t c")]).toEqual([
+      "t g+ g\u2212",
+      "t g+ g+",
+      "t c",
+    ]);
   });
 });
 

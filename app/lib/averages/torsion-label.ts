@@ -35,3 +35,13 @@ export function shapeLabel(torsions: readonly (number | null)[]): string {
 export function mirrorLabel(label: string): string {
   return label.replace(/[+\u2212]/g, (sign) => (sign === "+" ? "\u2212" : "+"));
 }
+
+/**
+ * The label of a conformer that stands for a mirror pair: of its two hands the one whose first signed torsion is plus.
+ *
+ * @example pairLabel("t g− g+") // "t g+ g−"
+ */
+export function pairLabel(label: string): string {
+  const sign = /[+\u2212]/.exec(label)?.[0];
+  return sign === "\u2212" ? mirrorLabel(label) : label;
+}

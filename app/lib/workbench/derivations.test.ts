@@ -549,6 +549,8 @@ describe("stations of the course line", () => {
       "distinct-set: 4 of 7, done",
       `populations: 298.15${NBSP}K, done`,
       "levels: no energies, todo",
+      "averages: no property, todo",
+      "trust: no sign of gaps, done",
       "hand-over: CSV, XYZ, JSON, done",
       "logbook: who did what, done",
     ]);

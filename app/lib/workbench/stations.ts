@@ -52,9 +52,15 @@ export function stations(ensemble: EnsembleView, sift: SiftView | null, temperat
 
 function trustStation(ready: SiftResult | null, waits: string): Pick<StationView, "figure" | "state"> {
   const coverage = samplingCoverage((ready?.kept ?? []).map(({ found }) => found));
-  return coverage === null
-    ? { figure: waits, state: "todo" }
-    : { figure: `coverage ${formatPercent(coverage.coverage)}`, state: "done" };
+  if (coverage === null) return { figure: waits, state: "todo" };
+  // All found once says nothing, and none found once is no proof that nothing is missing.
+  const figure =
+    coverage.once === coverage.hits
+      ? "coverage not known"
+      : coverage.once === 0
+        ? "no sign of gaps"
+        : `coverage ${formatPercent(coverage.coverage, coverage.coverage > 0.995 ? 1 : 0)}`;
+  return { figure, state: "done" };
 }
 
 function levelsStation(ensemble: EnsembleView): Pick<StationView, "figure" | "state"> {

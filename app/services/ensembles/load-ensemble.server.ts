@@ -91,6 +91,11 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
     bondTable: statedTable(ensemble.bondTable, graph),
     levels: toLevels(columns),
     properties: columns.filter((column) => column.kind === "property").length,
+    torsions: columns.flatMap(({ id, name, definition }) => {
+      const atoms =
+        definition?.type === "observable" && definition.observable === "torsion" && definition.atoms[0];
+      return atoms ? [{ id, name, atoms: atoms.map((atom) => atom - 1) }] : [];
+    }),
     files,
     createdAt: ensemble.createdAt.toISOString(),
     changedAt: ensemble.changedAt.toISOString(),
