@@ -300,6 +300,29 @@ describe("requests", () => {
   });
 });
 
+describe("rates of a token", () => {
+  it("of calls and of uploads can be set; beyond them 429 says when to come back", async () => {
+    const own = await tokenOf(lab.analyst.id, lab.team.id);
+    withEnv({ API_CALLS_PER_MINUTE: 6, API_UPLOADS_PER_MINUTE: 2 });
+    const statuses: number[] = [];
+    for (let k = 0; k < 3; k++) {
+      statuses.push((await upload(own, file2(`rate ${k}`, ["-1.55", "-1.45"]), fields)).status);
+    }
+    expect(statuses).toEqual([201, 201, 429]);
+    const list = () => call("/api/v1/ensembles", { token: own });
+    const calls = [await list(), await list(), await list(), await list()];
+    expect(calls.map(({ status }) => status)).toEqual([200, 200, 200, 429]);
+    const refused = calls[3];
+    expect(Number(refused?.headers.get("retry-after"))).toBeGreaterThan(0);
+    expect(await refused?.json()).toMatchObject({
+      status: 429,
+      detail: expect.stringContaining("6 calls a minute"),
+    });
+    const other = await tokenOf(lab.analyst.id, lab.team.id);
+    expect((await call("/api/v1/ensembles", { token: other })).status).toBe(200);
+  });
+});
+
 describe("chirality", () => {
   /** A sulfur with three different neighbours, in their plane or above it. */
   const sulfur = (comment: string, height: number) =>
