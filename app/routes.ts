@@ -24,6 +24,7 @@ export default [
     index("routes/team/series.tsx"),
     route("people", "routes/team/people.tsx"),
     route("tokens", "routes/team/tokens.tsx"),
+    route("windows", "routes/team/windows.tsx"),
   ]),
 
   route("ensembles/:id", "routes/workbench/layout.tsx", [

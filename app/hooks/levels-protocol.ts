@@ -1,5 +1,6 @@
 import type { ComparisonInput } from "~/lib/levels/compare";
 import { type ComparisonIntervals, comparisonIntervals } from "~/lib/levels/intervals";
+import { type PooledMolecule, pooledWindowInterval } from "~/lib/levels/pooled";
 import { type WindowBand, windowBand } from "~/lib/levels/window-band";
 import type { PlanData } from "~/lib/plan/evaluate";
 import type { Plan } from "~/lib/plan/plan";
@@ -12,6 +13,10 @@ export interface LevelTasks {
     result: ComparisonIntervals;
   };
   band: { input: Parameters<typeof windowBand>[0]; result: WindowBand };
+  pooled: {
+    input: { molecules: PooledMolecule[]; options: Parameters<typeof pooledWindowInterval>[1] };
+    result: ReturnType<typeof pooledWindowInterval>;
+  };
   plans: { input: { plans: Plan[]; chosen: number; data: PlanData[] }; result: PlansReport };
 }
 
@@ -23,6 +28,7 @@ export type LevelTask = {
 const RUN: { [Name in LevelTaskName]: (input: LevelTasks[Name]["input"]) => LevelTasks[Name]["result"] } = {
   intervals: ({ comparison, seed }) => comparisonIntervals(comparison, { seed }),
   band: windowBand,
+  pooled: ({ molecules, options }) => pooledWindowInterval(molecules, options),
   plans: ({ plans, chosen, data }) => planReport(plans, chosen, data),
 };
 

@@ -17,6 +17,7 @@ import { LevelAgainstLevel } from "./level-against-level";
 import { LevelMatrix } from "./level-matrix";
 import { LevelsSettings } from "./levels-settings";
 import { LevelsTabs } from "./levels-tabs";
+import { PAGE_SEED } from "./page-seed";
 import { pairPoints } from "./pair-points";
 import { PopulationAgainstPopulation } from "./population-against-population";
 import { SlopeChart } from "./slope-chart";
@@ -24,8 +25,6 @@ import { type Comparison, type LevelData, useComparison, useLevelData, useMember
 import { WindowChart } from "./window-chart";
 import { WindowTable } from "./window-table";
 
-/** Seed of every figure by chance on this page: with the same input the same digits. */
-export const PAGE_SEED = 412;
 /** Beyond this many conformers a bootstrap would keep a phone busy for minutes. */
 const MOST_RESAMPLED = 5000;
 

@@ -83,6 +83,16 @@ export function WindowTable({
         <TextLink to={{ pathname: href("/ensembles/:id/plan", { id: ensemble.id }), search }}>
           Make a plan
         </TextLink>
+        {ensemble.role === "guest" ? null : (
+          <>
+            {" "}
+            <TextLink
+              to={`${href("/teams/:team/windows", { team: ensemble.team.id })}?${new URLSearchParams({ series: ensemble.series.id, level: level.name, ref: reference.name })}`}
+            >
+              The window for the whole series
+            </TextLink>
+          </>
+        )}
       </p>
       <Note className="mt-4">
         Best case: a window cannot bring back what the sampler never found, and {reference.name} is taken as
