@@ -2,6 +2,7 @@ import { Cite, FormulaLine, type ReferenceSection, SectionLink } from "~/compone
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { fixed } from "~/lib/format";
 import { CONSTANTS_YEAR } from "~/lib/units";
+import { AveragesText, SamplingText } from "./average-sections";
 import { LevelErrorText, LevelsText, PlanText } from "./level-sections";
 
 /** Figures that the text names, as the code has them. */
@@ -38,6 +39,8 @@ export function methodSections(n: MethodNumbers): ReferenceSection[] {
     { id: "levels", title: "Levels against each other, and windows", body: <LevelsText /> },
     { id: "level-error", title: "The error of a level", body: <LevelErrorText /> },
     { id: "plan", title: "Plans and their cost", body: <PlanText /> },
+    { id: "averages", title: "Averages over conformers and atoms", body: <AveragesText /> },
+    { id: "sampling", title: "How complete a search is", body: <SamplingText /> },
     { id: "measures", title: "Distances, angles, torsions", body: <MeasuresText /> },
     { id: "digits", title: "Digits, exports, repeatability", body: <DigitsText /> },
   ];

@@ -27,7 +27,7 @@ export function TrustSection({ averages, trust }: { averages: AveragesView; trus
       <SectionHead
         id="section-title"
         title="Trust"
-        aside={<TextLink to={`${href("/methods")}#uncertainty`}>How this is computed</TextLink>}
+        aside={<TextLink to={`${href("/methods")}#level-error`}>How this is computed</TextLink>}
       />
       {result === null ? (
         <SectionState />

@@ -4,6 +4,7 @@ import { columns } from "../../db/schema.server.ts";
 import { AVERAGE_RULES, type AverageRule, ruleOf } from "../../lib/averages/rule.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
+import { recomputeDerived } from "../columns/recompute-derived.server.ts";
 import { lockEnsemble, touchEnsemble } from "../columns/store-column.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
@@ -47,6 +48,8 @@ export async function setRule(options: {
     await tx.update(columns).set({ rule }).where(eq(columns.id, options.columnId));
     if (column.definition?.type === "observable") {
       await recomputeObservables(tx, at.ensembleId, options.columnId);
+      // Formulas may stand on its values.
+      await recomputeDerived(tx, at.ensembleId);
     }
     await touchEnsemble(tx, at.ensembleId);
     await writeEntry(tx, grant, grant, {
