@@ -60,7 +60,8 @@ export async function signUp(page: Page, name: string, email: string): Promise<v
   await page.getByLabel("Password").fill(password);
   await page.getByRole("button", { name: "Sign up" }).click();
   await page.waitForURL(/\/login\?signed-up$/);
-  await page.getByLabel("Address").fill(email);
+  // What was typed a moment ago need not be typed again.
+  await expect(page.getByLabel("Address")).toHaveValue(email);
   await page.getByLabel("Password").fill(password);
   await page.getByRole("button", { name: "Sign in" }).click();
   await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);

@@ -9,6 +9,7 @@ import { actorContext, cookieChangeContext, requestIdContext } from "~/context";
 import { env } from "~/env.server";
 import { ownPath } from "~/lib/own-path";
 import { callerOf } from "~/middleware/caller.server";
+import { readTypedAddress } from "~/middleware/typed-address.server";
 import { formAuthenticator } from "~/services/auth/authenticator.server";
 import { signOut } from "~/services/auth/sign-out.server";
 import { forPage, refuseForm } from "~/services/http.server";
@@ -22,13 +23,14 @@ export const headers: Route.HeadersFunction = ({ actionHeaders }) => actionHeade
 /** Where the form leads: the page that somebody wanted, else their teams. */
 const target = (url: URL) => ownPath(url.searchParams.get("to"), href("/teams"));
 
-export function loader({ context, url }: Route.LoaderArgs) {
+export async function loader({ request, context, url }: Route.LoaderArgs) {
   if (context.get(actorContext).kind === "user") throw redirect(target(url));
   const { searchParams } = url;
   return {
     openSignUp: env().OPEN_SIGN_UP,
     changed: searchParams.has("changed"),
     signedUp: searchParams.has("signed-up"),
+    typed: await readTypedAddress(request.headers.get("cookie")),
   };
 }
 
@@ -75,7 +77,7 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
           type="email"
           autoComplete="username"
           required
-          defaultValue={actionData?.email}
+          defaultValue={actionData?.email ?? loaderData.typed}
         />
         <TextField
           label="Password"

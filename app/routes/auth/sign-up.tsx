@@ -7,6 +7,7 @@ import { TextLink } from "~/components/ui/text-link";
 import { actorContext, cookieChangeContext, requestIdContext } from "~/context";
 import { env } from "~/env.server";
 import { callerOf } from "~/middleware/caller.server";
+import { writeTypedAddress } from "~/middleware/typed-address.server";
 import { signOut } from "~/services/auth/sign-out.server";
 import { signUp } from "~/services/auth/sign-up.server";
 import { forPage, refuseForm } from "~/services/http.server";
@@ -36,7 +37,8 @@ export async function action({ request, context }: Route.ActionArgs) {
     // New or known, the address is answered alike: what follows is the door, not a room.
     await signOut(context.get(actorContext), caller.address);
     context.get(cookieChangeContext).change = { secret: null, stay: false };
-    return redirect(`${href("/login")}?signed-up`, 303);
+    const headers = { "set-cookie": await writeTypedAddress(typed.email) };
+    return redirect(`${href("/login")}?signed-up`, { status: 303, headers });
   });
 }
 
