@@ -33,6 +33,7 @@ export default [
     route("distinct-set", "routes/workbench/distinct-set.tsx"),
     route("compare", "routes/workbench/compare.tsx"),
     route("populations", "routes/workbench/populations.tsx"),
+    route("columns", "routes/workbench/columns.tsx"),
     route("levels", "routes/workbench/levels.tsx"),
     route("plan", "routes/workbench/plan.tsx"),
     route("averages", "routes/workbench/averages.tsx"),

@@ -95,6 +95,8 @@ export function DropOverlay({ over, where }: { over: number | null; where: React
 
 interface ChooserProps {
   onFiles: (files: File[]) => void;
+  /** What the file dialog offers first. */
+  accept?: string;
   disabled?: boolean;
 }
 
@@ -118,13 +120,13 @@ export function FileButton({
   );
 }
 
-function HiddenInput({ id, onFiles, disabled }: ChooserProps & { id: string }) {
+function HiddenInput({ id, onFiles, accept = ACCEPT, disabled }: ChooserProps & { id: string }) {
   return (
     <input
       id={id}
       type="file"
       multiple
-      accept={ACCEPT}
+      accept={accept}
       disabled={disabled}
       className="absolute inset-0 size-full cursor-pointer opacity-0 file:hidden"
       onChange={(event) => {
@@ -138,7 +140,7 @@ function HiddenInput({ id, onFiles, disabled }: ChooserProps & { id: string }) {
 }
 
 /** The dashed field: dropping (the whole page takes files), choosing, pasting. */
-export function Dropzone({ onFiles, disabled, hint }: ChooserProps & { hint: ReactNode }) {
+export function Dropzone({ onFiles, accept, disabled, hint }: ChooserProps & { hint: ReactNode }) {
   const id = useId();
   return (
     <div className="grid place-content-center justify-items-center gap-1 noscript:hidden print:hidden rounded-md border-[1.5px] border-dashed border-edge px-4 py-6 text-center text-ink-2">
@@ -150,7 +152,7 @@ export function Dropzone({ onFiles, disabled, hint }: ChooserProps & { hint: Rea
           className={`relative ${linkClass} has-[:focus-visible]:outline-2 has-[:focus-visible]:outline-offset-2 has-[:focus-visible]:outline-mark`}
         >
           choose them
-          <HiddenInput id={id} onFiles={onFiles} disabled={disabled} />
+          <HiddenInput id={id} onFiles={onFiles} accept={accept} disabled={disabled} />
         </label>
         , or paste text
       </p>

@@ -19,7 +19,7 @@ import { useWorkbench, WorkbenchProvider } from "./workbench-context";
 import { WorkbenchHeader } from "./workbench-header";
 
 /** Pages that belong to a station of another name. */
-const STATION_OF: Record<string, string> = { compare: "distinct-set", plan: "levels" };
+const STATION_OF: Record<string, string> = { compare: "distinct-set", plan: "levels", columns: "intake" };
 
 /** Sections whose view folds away below 1024 px: they are read, not looked at. */
 const WITHOUT_VIEW = ["hand-over", "logbook"];

@@ -1,0 +1,137 @@
+import { useState } from "react";
+import { Button } from "~/components/ui/button";
+import { TextField } from "~/components/ui/field";
+import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
+import { TextButton } from "~/components/ui/text-link";
+import type { ColumnsPreview } from "~/lib/api/schemas";
+
+type Question = ColumnsPreview["questions"][number];
+
+/** What the file leaves open, one card a question; nothing is kept before they are answered. */
+export function OpenPoints({
+  questions,
+  busy,
+  onAnswer,
+}: {
+  questions: readonly Question[];
+  busy: boolean;
+  onAnswer: (fields: Record<string, string>) => void;
+}) {
+  return (
+    <div className="mt-5 grid gap-5">
+      {questions.map((question, k) => (
+        <PointCard
+          key={question.id}
+          question={question}
+          count={`Question ${k + 1} of ${questions.length}`}
+          busy={busy}
+          onAnswer={(option) => onAnswer({ [question.id]: option })}
+        />
+      ))}
+    </div>
+  );
+}
+
+function PointCard({
+  question,
+  count,
+  busy,
+  onAnswer,
+}: {
+  question: Question;
+  count: string;
+  busy: boolean;
+  onAnswer: (option: string) => void;
+}) {
+  const proposed = question.options.find((option) => option.proposed);
+  const named = question.id === "level";
+  const [choice, setChoice] = useState(proposed?.id ?? "");
+  return (
+    <QuestionCard
+      count={count}
+      title={question.text}
+      reason={question.reason}
+      footer={
+        <Button
+          kind="primary"
+          disabled={busy || choice.trim() === ""}
+          onClick={() => onAnswer(choice.trim())}
+        >
+          {named ? "Name the level" : "Use this answer"}
+        </Button>
+      }
+    >
+      {named ? (
+        <div className="max-w-read px-4 py-4 sm:px-6">
+          <TextField
+            label="Name of the level of theory"
+            value={choice}
+            maxLength={120}
+            autoComplete="off"
+            spellCheck={false}
+            placeholder="for example B3LYP/6-31G(d)"
+            help={
+              question.options.length > 0
+                ? `In use: ${question.options.map(({ text }) => text).join(", ")}`
+                : undefined
+            }
+            onChange={(event) => setChoice(event.currentTarget.value)}
+          />
+        </div>
+      ) : (
+        question.options.map((option) => (
+          <QuestionOption
+            key={option.id}
+            name={`answer-${question.id}`}
+            value={option.id}
+            checked={choice === option.id}
+            onChange={setChoice}
+            title={option.text}
+            reason={option.detail}
+          >
+            {option.values ? (
+              <span className="text-right whitespace-nowrap text-ink-2">
+                {option.values.filter((value) => value !== null).join("  ")}
+              </span>
+            ) : null}
+          </QuestionOption>
+        ))
+      )}
+    </QuestionCard>
+  );
+}
+
+const NAMES: Record<string, string> = {
+  numbers: "Numbers",
+  header: "First row",
+  key: "First column",
+  firstFrame: "First frame",
+  labels: "Labels",
+  energyUnit: "Unit",
+  energyFrom: "Energy",
+  level: "Level",
+  perAtom: "Headers of atoms",
+  rule: "Rule",
+};
+
+/** What was answered, each with a way back. */
+export function AnsweredPoints({
+  fields,
+  onTakeBack,
+}: {
+  fields: Readonly<Record<string, string>>;
+  onTakeBack: (id: string) => void;
+}) {
+  const answered = Object.entries(fields).filter(([id]) => id in NAMES);
+  if (answered.length === 0) return null;
+  return (
+    <p className="mt-4 flex flex-wrap gap-x-5 gap-y-1 text-ink-2">
+      {answered.map(([id, value]) => (
+        <span key={id}>
+          {NAMES[id]}: <span className="font-medium text-ink">{value}</span>{" "}
+          <TextButton onClick={() => onTakeBack(id)}>Change</TextButton>
+        </span>
+      ))}
+    </p>
+  );
+}
