@@ -33,7 +33,7 @@ export interface SeriesLevels {
  * Two levels over all molecules of a series, matched by the names of the levels.
  *
  * @param options.series id of a series; all of the team where left out
- * @param options.level, options.reference names; the two that most ensembles have where left out
+ * @param options.level, options.reference names; the two that most ensembles have together where left out
  */
 export async function loadSeriesLevels(options: {
   actor: Actor;
@@ -45,9 +45,9 @@ export async function loadSeriesLevels(options: {
   const rows = await listEnsembles(options);
   const names = countNames(rows.map((row) => row.levels.map((level) => level.name)));
   const known = (name: string | undefined) => names.find((one) => one.name === name)?.name;
-  // The level most ensembles have comes first; of the rest the reference is the next.
-  const level = known(options.level) ?? names.find(({ name }) => name !== options.reference)?.name ?? null;
-  const reference = known(options.reference) ?? names.find(({ name }) => name !== level)?.name ?? null;
+  const proposed = commonPair(rows.map((row) => row.levels));
+  const level = known(options.level) ?? proposed?.find((name) => name !== options.reference) ?? null;
+  const reference = known(options.reference) ?? proposed?.toReversed().find((name) => name !== level) ?? null;
   const found: SeriesLevels = { names, level, reference, molecules: [], left: [] };
   if (level === null || reference === null || level === reference) return found;
   for (const row of rows.slice(0, MOST_MOLECULES)) {
@@ -74,6 +74,22 @@ function countNames(lists: readonly string[][]): SeriesLevels["names"] {
   return Array.from(counts, ([name, ensembles]) => ({ name, ensembles })).sort(
     (a, b) => b.ensembles - a.ensembles || (a.name < b.name ? -1 : 1),
   );
+}
+
+/** The two levels that most ensembles have together, the one that arrived first in front. */
+function commonPair(lists: readonly { name: string; ordinal: number }[][]): [string, string] | null {
+  const counts = new Map<string, { pair: [string, string]; n: number }>();
+  for (const list of lists) {
+    const inOrder = [...list].sort((a, b) => a.ordinal - b.ordinal);
+    for (const [k, a] of inOrder.entries()) {
+      for (const b of inOrder.slice(k + 1)) {
+        const key = JSON.stringify([a.name, b.name]);
+        const found = counts.get(key) ?? { pair: [a.name, b.name], n: 0 };
+        counts.set(key, { ...found, n: found.n + 1 });
+      }
+    }
+  }
+  return [...counts.values()].sort((a, b) => b.n - a.n)[0]?.pair ?? null;
 }
 
 async function loadMolecule(
