@@ -8,6 +8,8 @@ interface SiftState {
   id: string;
   status: SiftStatus;
   progress: number;
+  /** Pairs compared so far, while it runs. */
+  pairs?: number;
   error?: string | null;
 }
 
@@ -61,6 +63,7 @@ export function useRunningSift(id: string | null): SiftState | null {
 export interface Asked {
   id: string;
   progress: number;
+  pairs?: number;
   /** What is being computed. */
   request: SiftRequest;
 }
@@ -102,7 +105,7 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
       while (!hasEnded(state.status)) {
         state = await askState(`/files/sifts/${state.id}?wait=1`);
         if (mine !== turn.current) return;
-        setAsked({ id: state.id, progress: state.progress, request });
+        setAsked({ id: state.id, progress: state.progress, pairs: state.pairs, request });
       }
       running.current = null;
       setAsked(null);

@@ -75,6 +75,8 @@ export interface SiftView {
   id: string;
   status: SiftStatus;
   progress: number;
+  /** Pairs compared so far, while it runs. */
+  pairs?: number;
   recipe: SiftRecipe;
   result: SiftResult | null;
   error: string | null;

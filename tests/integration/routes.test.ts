@@ -121,6 +121,7 @@ describe("a reader", () => {
     ["DELETE", "/api/v1/sifts/:id"],
     ["POST", "/files/ensembles/:id/files"],
     ["POST", "/files/ensembles/:id/sifts"],
+    ["POST", "/files/sifts/:id/pair-matrix"],
     ["DELETE", "/files/sifts/:id"],
   ];
 

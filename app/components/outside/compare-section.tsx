@@ -320,7 +320,7 @@ function Comparison({
                 note="One energy as it stands, compared with relaxed conformers: part of it is strain, part is that nobody relaxed it. Cost of choosing: −RT ln p, what it takes to hold the flask in that one conformer. The level’s own error is not in these figures."
               />
             ) : (
-              <Note>
+              <Note className="self-start">
                 {structure.strain !== null
                   ? `It carries an energy at ${structure.strain.levelName}, ${withUnit(formatEnergy(structure.strain.kcal), "kcal/mol")} above the lowest there; the set shown is ordered by another level.`
                   : "It carries no energy at a level of this ensemble, so its strain is not known."}

@@ -7,7 +7,8 @@ import { Note } from "~/components/ui/note";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { TextButton, TextLink } from "~/components/ui/text-link";
 import { useNewSift } from "~/hooks/use-sift";
-import { capital, fixed, formatPercent, formatRmsd, plural, withUnit } from "~/lib/format";
+import { useTimeLeft } from "~/hooks/use-time-left";
+import { capital, fixed, formatPercent, formatRmsd, formatSeconds, plural, withUnit } from "~/lib/format";
 import type { SiftRequest } from "~/lib/recipe/recipe";
 import { distinctFinding, joinWords, nearMirror } from "~/lib/workbench/findings";
 import { recipeLine, requestOf } from "~/lib/workbench/recipe-words";
@@ -178,6 +179,7 @@ function SiftLine({
   error: string | null;
   onCancel: () => void;
 }) {
+  const left = useTimeLeft(asked?.id ?? null, asked?.progress ?? 0);
   return (
     <div className="mt-2 min-h-6" aria-live="polite">
       {error ? (
@@ -186,7 +188,11 @@ function SiftLine({
         </p>
       ) : asked ? (
         <div className="appear-late flex max-w-read items-center gap-4 text-xs text-ink-2">
-          <span className="whitespace-nowrap">Comparing with the new settings</span>
+          <span className="figures whitespace-nowrap">
+            Comparing with the new settings
+            {asked.pairs ? `, ${plural(asked.pairs, "pair")} so far` : ""}
+            {left === null ? "" : `; ${formatSeconds(Math.max(1, Math.round(left)))} left`}
+          </span>
           <span className="flex-1">
             <ProgressBar share={asked.progress} label="Sift with the new settings" />
           </span>

@@ -4,7 +4,8 @@ import { Button, ButtonLink } from "~/components/ui/button";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { Skeleton } from "~/components/ui/skeleton";
 import { StatePanel } from "~/components/ui/state-panel";
-import { formatCount, formatPercent, plural } from "~/lib/format";
+import { useTimeLeft } from "~/hooks/use-time-left";
+import { formatCount, formatPercent, formatSeconds, plural } from "~/lib/format";
 import type { SiftView } from "~/lib/views";
 import { useWorkbench } from "./workbench-context";
 
@@ -67,13 +68,14 @@ export function SectionState({ start }: { start?: ReactNode }) {
 
 function Running({ sift }: { sift: SiftView }) {
   const { ensemble } = useWorkbench();
+  const left = useTimeLeft(sift.status === "running" ? sift.id : null, sift.progress);
   return (
     <div className="mt-6 grid gap-6" aria-busy="true">
       <div className="max-w-read">
         <p role="status" className="mb-2 text-ink-2">
           {sift.status === "queued"
             ? `The sift of ${plural(ensemble.accepted, "frame")} waits for its turn.`
-            : `Comparing ${plural(ensemble.accepted, "frame")}, ${formatPercent(sift.progress)} done.`}
+            : `Comparing ${plural(ensemble.accepted, "frame")}, ${formatPercent(sift.progress)} done${sift.pairs ? `, ${plural(sift.pairs, "pair")} so far` : ""}${left === null ? "" : `; ${formatSeconds(Math.max(1, Math.round(left)))} left`}.`}
         </p>
         <ProgressBar share={sift.progress} label="Sift" />
         <p className="mt-2 hidden text-xs text-ink-3 noscript:block">

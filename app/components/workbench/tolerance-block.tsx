@@ -10,6 +10,7 @@ import { nearnessHistogram } from "~/lib/workbench/nearness";
 import { countedTolerances, plateauSentence } from "~/lib/workbench/plateau";
 import { NearestPairs, NearestToSelected } from "./near-cut";
 import { NearnessChart } from "./nearness-chart";
+import { PairDistances } from "./pair-distances";
 import { PlateauChart, PlateauPlace } from "./plateau-chart";
 import { useWorkbench } from "./workbench-context";
 
@@ -98,6 +99,7 @@ export function ToleranceBlock({
         <NearestPairs nearness={nearness} progress={whole.progress} />
         <NearestToSelected />
       </div>
+      <PairDistances />
     </>
   );
 }

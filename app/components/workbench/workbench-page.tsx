@@ -61,7 +61,12 @@ function useFollowedSift(sift: SiftView | null): SiftView | null {
   return useMemo(
     () =>
       sift && runs && state
-        ? { ...sift, status: over ? "running" : state.status, progress: over ? 1 : state.progress }
+        ? {
+            ...sift,
+            status: over ? "running" : state.status,
+            progress: over ? 1 : state.progress,
+            ...(state.pairs === undefined ? {} : { pairs: state.pairs }),
+          }
         : sift,
     [sift, runs, state, over],
   );

@@ -497,6 +497,7 @@ export const siftSchema = z
     id,
     status: siftStatusSchema,
     progress: z.number().min(0).max(1),
+    pairs: z.number().int().optional().meta({ description: "Pairs compared so far, while it runs." }),
     ensemble: id,
     recipe: siftRecipeSchema,
     result: siftResultSchema.nullable(),

@@ -80,7 +80,7 @@ export function outsideFinding(
       ? energy === null
         ? ""
         : ` That shape lies ${energy}`
-      : ` The flask holds ${formatPercent(nearest.population)} of that shape, ${energy}`;
+      : ` The flask holds ${nearest.population < 0.005 ? "less than 1\u00a0%" : formatPercent(nearest.population)} of that shape, ${energy}`;
   const above =
     options.strain === null || nearest.relativeEnergy === null
       ? null

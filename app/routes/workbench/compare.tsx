@@ -45,7 +45,7 @@ export async function action({ request, params, context }: Route.ActionArgs) {
   });
 }
 
-/** What is chosen on the page does not concern the list. */
+/** What is chosen on the page does not concern the list; a structure that is named may be a new one. */
 export function shouldRevalidate({
   currentUrl,
   nextUrl,
@@ -53,7 +53,8 @@ export function shouldRevalidate({
   formMethod,
 }: ShouldRevalidateFunctionArgs) {
   if (formMethod !== undefined || currentUrl.pathname !== nextUrl.pathname) return defaultShouldRevalidate;
-  return currentUrl.href === nextUrl.href ? defaultShouldRevalidate : false;
+  if (currentUrl.href === nextUrl.href) return defaultShouldRevalidate;
+  return currentUrl.searchParams.get("outside") !== nextUrl.searchParams.get("outside");
 }
 
 export default function Compare({ loaderData }: Route.ComponentProps) {

@@ -32,7 +32,9 @@ export async function readOutside(file: string, source: AsyncIterable<Uint8Array
   const remarks: string[] = [];
   const opened = await openFile(source, { file, limit: OUTSIDE_BYTES, remark: () => {} });
   const { format, bytes } = await checkFormat(file, opened.bytes, () => {});
-  const reader = format === "sdf" ? new SdfReader({ file }) : new XyzReader({ file });
+  // A crystal or a pose may well come without hydrogens: its bonds need not leave room for any.
+  const reader =
+    format === "sdf" ? new SdfReader({ file, choices: { hydrogens: "heavy" } }) : new XyzReader({ file });
   const frames: XyzFrame[] = [];
   let count = 0;
   const take = (read: readonly XyzFrame[]) => {

@@ -7,7 +7,7 @@ import type { SiftStatus, SiftView } from "../../lib/views.ts";
 import { siftInputSha } from "../ensembles/accepted-frames.server.ts";
 import { findBatchRanges, withFoundIn } from "../ensembles/batches.server.ts";
 import { notFound } from "../http.server.ts";
-import { progressHere } from "../jobs/state.server.ts";
+import { pairsHere, progressHere } from "../jobs/state.server.ts";
 
 /** A sift with the state of its job, without its result. */
 export interface FoundSift {
@@ -118,6 +118,7 @@ export async function toSiftView(sift: FoundSift): Promise<SiftView> {
     id: sift.id,
     status: sift.status,
     progress: sift.progress,
+    ...(sift.status === "running" ? { pairs: pairsHere(sift.jobId) ?? 0 } : {}),
     recipe: sift.recipe,
     result: result && withFoundIn(result, await findBatchRanges(sift.ensembleId)),
     error: sift.error,
