@@ -10,6 +10,7 @@ import { sniff } from "../../app/lib/text/sniff.ts";
 import type { XyzFrame } from "../../app/lib/xyz/frame.ts";
 import { XyzReader } from "../../app/lib/xyz.server.ts";
 import { sdfReport } from "./sdf-report.ts";
+import { tableReport } from "./table-report.ts";
 
 /**
  * What the readers say of one file, as the fixtures of the acceptance tables hold it: sniffed format, frames, messages
@@ -21,6 +22,8 @@ export function readReport(name: string, bytes: Uint8Array, chunk = bytes.length
   const start = { container, format, ...(remark ? { remark: remark.message } : {}) };
   if (refusal) return { ...start, refused: `${refusal.code}: ${refusal.message} ${refusal.hint}` };
   if (container !== "none") return start;
+  // Rows of tables, and energies from a second file.
+  if (/^(?:C\d\d|E14)/.test(name)) return { ...start, ...tableReport(name, bytes, chunk) };
   if (format === "sdf") return { ...start, ...sdfReport(name, bytes, chunk) };
   const reader = new XyzReader({ file: name });
   const frames: XyzFrame[] = [];

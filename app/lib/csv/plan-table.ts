@@ -155,7 +155,7 @@ function rowMessages(table: RawTable, match: MatchedRows): IntakeMessage[] {
     const what = match.key === "frame" ? "no frame has this number" : "no frame has this label";
     const message =
       found === "" ? `Row ${row} has no key; it was not taken.` : `Row ${row}: ${what}; it was not taken.`;
-    return { code: "C07", severity: "remark", file, line, found, message };
+    return { code: "C07", severity: "remark", file, line, ...(found === "" ? {} : { found }), message };
   });
   const missing = match.missing.map(
     (frame): IntakeMessage => ({

@@ -1,0 +1,147 @@
+import fc from "fast-check";
+import { describe, expect, it } from "vitest";
+import { METHANE, NO_ANSWERS, tableReport } from "../../tests/factories/table-report.ts";
+import { planTable } from "./csv/plan-table.ts";
+import { type TableOptions, TableReader } from "./csv.server.ts";
+import { DomainError } from "./errors.ts";
+import { textCell } from "./export/csv.ts";
+
+const bytesOf = (text: string) => new TextEncoder().encode(text);
+
+function read(text: string, options: Partial<TableOptions> = {}, chunk = 7) {
+  const reader = new TableReader({ file: "t.csv", ...options });
+  const bytes = bytesOf(text);
+  for (let at = 0; at < bytes.length; at += chunk) reader.push(bytes.subarray(at, at + chunk));
+  return reader.end();
+}
+
+describe("a table", () => {
+  it("says the same in any pieces and with any ends of lines", () => {
+    const text = 'frame;"a;b";c [Å]\n1;0.5;"x\ny"\n2;;7\n\n;;\n3;1e-3;8';
+    const whole = JSON.stringify(tableReport("t.csv", bytesOf(text)));
+    for (const chunk of [1, 2, 3, 5, 64]) {
+      for (const end of ["\n", "\r\n", "\r"]) {
+        expect(JSON.stringify(tableReport("t.csv", bytesOf(text.replaceAll("\n", end)), chunk))).toBe(whole);
+      }
+    }
+  });
+
+  it("gives back every number and label that was written", () => {
+    const cell = fc.double({ noNaN: true, noDefaultInfinity: true });
+    const label = fc.string({ minLength: 1, maxLength: 12 }).filter((text) => {
+      // What a spreadsheet trims away, or takes for a missing value, is no label here.
+      return text === text.trim() && !/[\0]/.test(text) && text.trim() !== "";
+    });
+    const rows = fc.uniqueArray(fc.tuple(label, cell, cell), {
+      selector: ([name]) => name,
+      minLength: 1,
+      maxLength: 15,
+    });
+    fc.assert(
+      fc.property(rows, (written) => {
+        const text = ["label,a [Å],b", ...written.map(([name, a, b]) => `${textCell(name)},${a},${b}`)].join(
+          "\r\n",
+        );
+        const table = read(text);
+        expect(table.keys).toEqual(written.map(([name]) => name.replace(/\r\n?/g, "\n")));
+        expect([...(table.columns[0]?.values ?? [])]).toEqual(written.map(([, a]) => a + 0));
+        expect([...(table.columns[1]?.values ?? [])]).toEqual(written.map(([, , b]) => b + 0));
+      }),
+      { seed: 11, numRuns: 120 },
+    );
+  });
+
+  it("is read or refused in words, never more, whatever the bytes", () => {
+    const piece = fc.constantFrom(
+      "frame",
+      "label",
+      ",",
+      ";",
+      "\t",
+      "|",
+      '"',
+      "\n",
+      "\r",
+      "1",
+      "0,5",
+      "1.2",
+      "E [kcal/mol]",
+      "C1",
+      "H2",
+      "-",
+      "é",
+      "\u2212",
+      " ",
+      "[",
+      "]",
+      "(",
+      "=",
+      "'",
+      "nan",
+      "1.234,5",
+    );
+    const text = fc.array(piece, { maxLength: 60 }).map((pieces) => bytesOf(pieces.join("")));
+    fc.assert(
+      fc.property(fc.oneof(text, fc.uint8Array({ maxLength: 200 })), (bytes) => {
+        const reader = new TableReader({ file: "t.csv" });
+        try {
+          reader.push(bytes);
+          const table = reader.end();
+          const plan = planTable(table, METHANE, NO_ANSWERS);
+          for (const { data } of plan.columns) {
+            expect(data.values.every(Number.isFinite)).toBe(true);
+            expect(data.values.length).toBe(5);
+          }
+          expect(plan.messages.every(({ message }) => message.length > 0)).toBe(true);
+        } catch (error) {
+          expect(error).toBeInstanceOf(DomainError);
+        }
+      }),
+      { seed: 12, numRuns: 500 },
+    );
+  });
+
+  it("keeps to its limits", () => {
+    const rows = Array.from({ length: 30 }, (_, k) => `${k + 1},1,2,3`).join("\n");
+    expect(() => read(`frame,a,b,c\n${rows}`, { limits: { rows: 20 } })).toThrow("more than 20 rows");
+    expect(() => read(`frame,a,b,c\n${rows}`, { limits: { cells: 60 } })).toThrow("more than 60 cells");
+    expect(() => read(`frame,a,b,c\n${rows}`, { limits: { columns: 3 } })).toThrow(
+      "4 columns; 3 is the limit",
+    );
+    expect(() => read(`frame,a\n1,"${"x".repeat(70_000)}`)).toThrow("never closed");
+    expect(() => read(`frame,${"x".repeat(1_100_000)}\n1,2\n`, {}, 65_536)).toThrow("1 MiB");
+    expect(() => read("frame,a\n1,\0\n")).toThrow("NUL");
+  });
+
+  it("reads a decimal comma and marks between thousands only as stated", () => {
+    const values = (style: TableOptions["style"]) => {
+      const table = read("frame;a;b\n1;1.234,5;1,234.5\n2;0,5;0.5\n", { style });
+      return table.columns.map(({ values, present }) =>
+        [...values].map((value, k) => (present[k] === 1 ? value : null)),
+      );
+    };
+    expect(values("comma")).toEqual([
+      [null, 0.5],
+      [null, null],
+    ]);
+    expect(values("comma-thousands")).toEqual([
+      [1234.5, 0.5],
+      [null, null],
+    ]);
+    expect(values("point-thousands")).toEqual([
+      [null, null],
+      [1234.5, 0.5],
+    ]);
+    expect(values("point")).toEqual([
+      [null, null],
+      [null, 0.5],
+    ]);
+  });
+
+  it("takes time and memory by its size: ten times the rows, ten times the numbers", () => {
+    const table = (count: number) =>
+      read(`frame,a\n${Array.from({ length: count }, (_, k) => `${k + 1},${k}.5`).join("\n")}`, {}, 65_536);
+    expect(table(2_000).columns[0]?.count).toBe(2_000);
+    expect(table(20_000).columns[0]?.values[19_999]).toBe(19_999.5);
+  });
+});
