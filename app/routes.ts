@@ -24,6 +24,7 @@ export default [
     index("routes/team/series.tsx"),
     route("people", "routes/team/people.tsx"),
     route("tokens", "routes/team/tokens.tsx"),
+    route("logbook", "routes/team/logbook.tsx"),
     route("windows", "routes/team/windows.tsx"),
   ]),
 
@@ -43,6 +44,8 @@ export default [
   ]),
 
   route("ensembles/:id/editions/:number", "routes/editions/edition.tsx"),
+  route("files/ensembles/:id/logbook.csv", "routes/files/logbook-csv.ts"),
+  route("files/teams/:team/logbook.csv", "routes/files/team-logbook-csv.ts"),
   route("files/ensembles/:id/editions/:number/files/:name", "routes/editions/file.ts"),
   route("files/ensembles/:id/editions/:number/positions", "routes/editions/positions.ts"),
 

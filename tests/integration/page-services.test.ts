@@ -76,7 +76,7 @@ describe("the pages of an ensemble", () => {
 
   it("show who did what, and to a guest of the example neither names nor what members tried", async () => {
     await post(lab.token, `/ensembles/${ensembleId}/frames/1/hold`, { reason: "<script>alert(1)</script>" });
-    const rows = await loadLogbook({ actor, ensembleId });
+    const { rows } = await loadLogbook({ actor, ensembleId });
     expect(rows[0]).toMatchObject({ type: "hold", by: "token", text: "Held frame 1" });
     expect(rows[0]?.who).toMatch(/^Token lowl_/);
     const told = await (await call(`/api/v1/ensembles/${ensembleId}`, { token: lab.token })).json();
@@ -89,7 +89,7 @@ describe("the pages of an ensemble", () => {
       message: "<script>alert(1)</script>",
     });
     await db.update(ensembles).set({ example: true }).where(eq(ensembles.id, ensembleId));
-    expect(await loadLogbook({ actor: NOBODY, ensembleId })).toEqual([]);
+    expect((await loadLogbook({ actor: NOBODY, ensembleId })).rows).toEqual([]);
     const view = await loadEnsemble({ actor: NOBODY, ensembleId });
     expect(view).toMatchObject({ role: "guest", mayCompute: false });
     expect((await loadExample({ actor: NOBODY }))?.ensemble.id).toBe(ensembleId);

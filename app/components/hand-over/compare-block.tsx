@@ -1,15 +1,17 @@
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
-import { changeSentence } from "~/lib/edition/compare";
+import { type ComparedConformer, changeSentence } from "~/lib/edition/compare";
 import type { HandOverView } from "~/lib/edition/views";
-import { formatCount, formatPopulation, signed } from "~/lib/format";
+import { formatCount, formatPopulation, plural, signed } from "~/lib/format";
 
 const MOST_ROWS = 40;
 
 /** What changed between two editions: in words, setting by setting, conformer by conformer. */
 export function CompareBlock({ comparison }: { comparison: NonNullable<HandOverView["comparison"]> }) {
   const { before, after, result } = comparison;
-  const { changes, conformers } = result;
+  const { changes } = result;
+  const conformers = result.conformers.filter(differs);
+  const same = result.conformers.length - conformers.length;
   return (
     <section className="mt-8" aria-labelledby="compare-title">
       <BlockHead title={`Edition ${after} against edition ${before}`} id="compare-title" />
@@ -38,47 +40,73 @@ export function CompareBlock({ comparison }: { comparison: NonNullable<HandOverV
           </tbody>
         </Table>
       ) : null}
-      <Table aria-label="Conformers of both editions" className="mt-4">
-        <thead>
-          <tr>
-            <Th>Frame</Th>
-            <Th>Edition {before}</Th>
-            <Th>Edition {after}</Th>
-            <Th align="right" unit="%" className="max-sm:hidden">
-              Before
-            </Th>
-            <Th align="right" unit="%">
-              After
-            </Th>
-            <Th align="right" unit="% points">
-              Change
-            </Th>
-          </tr>
-        </thead>
-        <tbody>
-          {conformers.slice(0, MOST_ROWS).map((row) => (
-            <Tr key={row.frame} className="figures">
-              <Td>{row.frame}</Td>
-              <Td>{row.before ?? <span className="text-ink-3">{row.note}</span>}</Td>
-              <Td>{row.after ?? <span className="text-ink-3">{row.note}</span>}</Td>
-              <Td align="right" className="max-sm:hidden">
-                {formatPopulation(row.populationBefore)}
-              </Td>
-              <Td align="right">{formatPopulation(row.populationAfter)}</Td>
-              <Td align="right">
-                {row.populationBefore === null || row.populationAfter === null
-                  ? "–"
-                  : signed(100 * (row.populationAfter - row.populationBefore), 1)}
-              </Td>
-            </Tr>
-          ))}
-        </tbody>
-      </Table>
+      {conformers.length > 0 ? (
+        <ConformerTable before={before} after={after} rows={conformers.slice(0, MOST_ROWS)} />
+      ) : null}
+      <p className="figures mt-2 text-ink-2">
+        {same === 0 ? "No conformer is" : `${plural(same, "conformer is", "conformers are")}`} the same in
+        both, with the same printed population.
+      </p>
       {conformers.length > MOST_ROWS ? (
         <p className="figures mt-2 text-xs text-ink-3">
           {formatCount(conformers.length - MOST_ROWS)} more conformers; results.csv of both editions has all.
         </p>
       ) : null}
     </section>
+  );
+}
+
+/** Another place in the set, another printed population, or in one edition only. */
+function differs(row: ComparedConformer): boolean {
+  const printed = (value: number | null) => formatPopulation(value);
+  return row.before !== row.after || printed(row.populationBefore) !== printed(row.populationAfter);
+}
+
+function ConformerTable({
+  before,
+  after,
+  rows,
+}: {
+  before: number;
+  after: number;
+  rows: readonly ComparedConformer[];
+}) {
+  return (
+    <Table aria-label="Conformers that differ" className="mt-4">
+      <thead>
+        <tr>
+          <Th>Frame</Th>
+          <Th>Edition {before}</Th>
+          <Th>Edition {after}</Th>
+          <Th align="right" unit="%" className="max-sm:hidden">
+            Before
+          </Th>
+          <Th align="right" unit="%">
+            After
+          </Th>
+          <Th align="right" unit="% points">
+            Change
+          </Th>
+        </tr>
+      </thead>
+      <tbody>
+        {rows.map((row) => (
+          <Tr key={row.frame} className="figures">
+            <Td>{row.frame}</Td>
+            <Td wrap>{row.before ?? <span className="text-ink-3">{row.note}</span>}</Td>
+            <Td wrap>{row.after ?? <span className="text-ink-3">{row.note}</span>}</Td>
+            <Td align="right" className="max-sm:hidden">
+              {formatPopulation(row.populationBefore)}
+            </Td>
+            <Td align="right">{formatPopulation(row.populationAfter)}</Td>
+            <Td align="right">
+              {row.populationBefore === null || row.populationAfter === null
+                ? "–"
+                : signed(100 * (row.populationAfter - row.populationBefore), 1)}
+            </Td>
+          </Tr>
+        ))}
+      </tbody>
+    </Table>
   );
 }

@@ -13,7 +13,7 @@ export function VerifyStrip({ edition, mayShare }: { edition: EditionRow; maySha
     <section className={`mt-6 border-t-3 ${tone} border-b border-b-rule py-3`} aria-label="Verification">
       <div className="flex flex-wrap items-center gap-x-4 gap-y-3">
         {verified === null ? (
-          <p className="min-w-0 flex-1 text-ink-2">
+          <p className="min-w-0 flex-1 text-ink-2 max-sm:basis-full">
             Edition {edition.number} has not been recomputed yet. It takes the stored bytes, runs the recipe
             again and compares every file.
           </p>
@@ -22,7 +22,7 @@ export function VerifyStrip({ edition, mayShare }: { edition: EditionRow; maySha
             <Badge tone={verified.same ? "good" : "danger"}>
               {verified.same ? "the same bytes" : "it differs"}
             </Badge>
-            <div className="figures min-w-0 flex-1">
+            <div className="figures min-w-0 flex-1 max-sm:basis-full">
               <p className="font-medium">
                 {verified.same
                   ? `Edition ${edition.number} was recomputed from its source bytes in ${formatSeconds(verified.seconds)}: ${verified.agree} of ${verified.files} files agree, byte for byte.`

@@ -15,7 +15,7 @@ export function TeamTabs({
   series: readonly { id: string; name: string; ensembles: number }[];
   /** Id of the series shown; null shows all. */
   chosen: string | null;
-  at?: "series" | "people" | "tokens";
+  at?: "series" | "people" | "tokens" | "logbook";
 }) {
   const base = href("/teams/:team", { team });
   const all = series.reduce((sum, one) => sum + one.ensembles, 0);
@@ -47,6 +47,9 @@ export function TeamTabs({
       </Link>
       <Link to={href("/teams/:team/tokens", { team })} className={TAB} aria-current={here(at === "tokens")}>
         Tokens
+      </Link>
+      <Link to={href("/teams/:team/logbook", { team })} className={TAB} aria-current={here(at === "logbook")}>
+        Logbook
       </Link>
     </nav>
   );

@@ -1,39 +1,54 @@
-import type { ShouldRevalidateFunctionArgs } from "react-router";
+import { data, type ShouldRevalidateFunctionArgs, useLocation } from "react-router";
 import { LogbookSection } from "~/components/workbench/logbook-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
-import { forPage } from "~/services/http.server";
+import { readFilter } from "~/lib/logbook/filter";
+import { forPage, refuseForm } from "~/services/http.server";
 import { loadLogbook } from "~/services/logbook/load-logbook.server";
+import { remarkSchema, writeRemark } from "~/services/logbook/write-remark.server";
 import type { Route } from "./+types/logbook";
-
-/** Entries the service gives at once; a full page means that there may be older ones. */
-const PAGE = 200;
 
 export function meta({ matches }: Route.MetaArgs) {
   return sectionMeta("Logbook", matches);
 }
 
 export async function loader({ params, context, url }: Route.LoaderArgs) {
-  const asked = url.searchParams.get("before");
-  const before = asked !== null && /^[1-9]\d{0,14}$/.test(asked) ? Number(asked) : undefined;
-  const rows = await forPage(context.get(requestIdContext), () =>
-    loadLogbook({ actor: context.get(actorContext), ensembleId: params.id, before }),
+  const filter = readFilter(url.searchParams);
+  const page = await forPage(context.get(requestIdContext), () =>
+    loadLogbook({ actor: context.get(actorContext), ensembleId: params.id, filter }),
   );
-  return { rows, older: rows.length < PAGE ? null : (rows.at(-1)?.id ?? null) };
+  return { page, filter };
 }
 
-/** What is selected in the workbench does not concern the logbook. */
+export async function action({ request, params, context }: Route.ActionArgs) {
+  return forPage(context.get(requestIdContext), async () => {
+    const text = remarkSchema.safeParse((await request.formData()).get("text"));
+    if (!text.success) return data({ message: text.error.issues[0]?.message ?? "" }, { status: 400 });
+    try {
+      await writeRemark({ actor: context.get(actorContext), ensembleId: params.id, text: text.data });
+    } catch (error) {
+      return refuseForm(error, {});
+    }
+    return { ok: true as const };
+  });
+}
+
+/** What is selected in the workbench does not concern the logbook; its own filters do. */
 export function shouldRevalidate({
   currentUrl,
   nextUrl,
   defaultShouldRevalidate,
   formMethod,
 }: ShouldRevalidateFunctionArgs) {
-  if (formMethod !== undefined || currentUrl.pathname !== nextUrl.pathname) return defaultShouldRevalidate;
+  const sent = formMethod !== undefined && formMethod !== "GET";
+  if (sent || currentUrl.pathname !== nextUrl.pathname) return defaultShouldRevalidate;
   if (currentUrl.href === nextUrl.href) return defaultShouldRevalidate;
-  return currentUrl.searchParams.get("before") !== nextUrl.searchParams.get("before");
+  return ["before", "kind", "who", "when", "text"].some(
+    (name) => currentUrl.searchParams.get(name) !== nextUrl.searchParams.get(name),
+  );
 }
 
 export default function Logbook({ loaderData }: Route.ComponentProps) {
-  return <LogbookSection {...loaderData} />;
+  const { search } = useLocation();
+  return <LogbookSection {...loaderData} search={search} />;
 }
