@@ -1,4 +1,5 @@
 import { DEFAULT_LIMITS, type FrameLimits } from "./intake/limits.ts";
+import type { ReadingChoices } from "./intake/reading-choices.ts";
 import { IntakeRejection } from "./intake/reject.ts";
 import type { IntakeMessage } from "./intake/report.ts";
 import { FieldCollector } from "./sdf/data-fields.ts";
@@ -53,6 +54,7 @@ export class SdfReader {
   readonly #file: string;
   readonly #first: number;
   readonly #limits: FrameLimits;
+  readonly #choices: ReadingChoices;
   readonly #text = new Utf8Stream();
   readonly #lines: LineBuffer;
   readonly #topologies = new Topologies();
@@ -71,6 +73,7 @@ export class SdfReader {
     this.#file = options.file;
     this.#first = options.firstNumber ?? 1;
     this.#limits = { ...DEFAULT_LIMITS, ...options.limits };
+    this.#choices = options.choices ?? {};
     this.#lines = new LineBuffer(options.file);
   }
 
@@ -275,11 +278,12 @@ export class SdfReader {
 
   #emit(builder: RecordBuilder, lastLine: number): void {
     this.#data.end();
-    const frame = finishRecord(builder, this.#data, this.#topologies, {
+    const place = {
       file: this.#file,
       number: this.#first + this.frames,
       lineCount: lastLine - builder.line + 1,
-    });
+    };
+    const frame = finishRecord(builder, this.#data, this.#topologies, place, this.#choices);
     this.frames += 1;
     if (frame.problem) this.held += 1;
     else this.#countTags(frame);

@@ -1,6 +1,7 @@
 // One state machine and nothing else, longer than a file should be: its states share what waits for the next line.
 // What a line means is in xyz/atom-line, count-line and frame-builder, where a search ends in xyz/restart-search.
 import { DEFAULT_LIMITS, type FrameLimits } from "./intake/limits.ts";
+import { AS_PROPOSED, type ReadingChoices } from "./intake/reading-choices.ts";
 import type { IntakeMessage } from "./intake/report.ts";
 import { decodeText, Utf8Stream } from "./text/decode.ts";
 import { LineBuffer, PIECE_BYTES } from "./text/lines.ts";
@@ -11,6 +12,7 @@ import { brokenOff, cutOff, surplus } from "./xyz/form-faults.ts";
 import { NOTE_LENGTH, type XyzFrame } from "./xyz/frame.ts";
 import { type BuilderFault, FrameBuilder, type TextLine } from "./xyz/frame-builder.ts";
 import { MAX_COLUMNS, PLAIN_LAYOUT } from "./xyz/layout.ts";
+import { openCapitals, proposeCapitals } from "./xyz/open-frame.ts";
 import { readPlainAtoms } from "./xyz/plain-atoms.ts";
 import {
   type Place,
@@ -31,6 +33,8 @@ export interface XyzOptions {
   /** Number of the first frame, when files before this one brought some; default 1. */
   readonly firstNumber?: number;
   readonly limits?: Partial<FrameLimits>;
+  /** How to read what the file leaves open; left out: such frames are held. */
+  readonly choices?: ReadingChoices;
 }
 
 /** What a file came to. */
@@ -67,6 +71,9 @@ export class XyzReader {
   readonly #file: string;
   readonly #first: number;
   readonly #limits: FrameLimits;
+  readonly #choices: ReadingChoices;
+  /** Names in capitals mean the same in all frames: the first decides. */
+  #capitals: "label" | "element" | null = null;
   readonly #text = new Utf8Stream();
   readonly #lines: LineBuffer;
   #out: XyzFrame[] = [];
@@ -91,6 +98,7 @@ export class XyzReader {
     this.#file = options.file;
     this.#first = options.firstNumber ?? 1;
     this.#limits = { ...DEFAULT_LIMITS, ...options.limits };
+    this.#choices = options.choices ?? {};
     this.#lines = new LineBuffer(options.file);
   }
 
@@ -206,7 +214,7 @@ export class XyzReader {
     this.#flush(line.number);
     if (count.note !== null && !readCountLine(line.text, false)) this.#anyCountNote = true;
     this.#checkLimits(count, line.number);
-    this.#builder = new FrameBuilder(count, line.number);
+    this.#builder = new FrameBuilder(count, line.number, this.#choices);
     this.#mode = "comment";
   }
 
@@ -282,6 +290,7 @@ export class XyzReader {
       maxAtoms: this.#limits.atoms,
       need: "whole",
       anyCountNote: this.#anyCountNote,
+      choices: this.#choices,
     });
   }
 
@@ -297,6 +306,7 @@ export class XyzReader {
       maxAtoms: this.#limits.atoms,
       need: "start",
       anyCountNote: this.#anyCountNote,
+      choices: this.#choices,
     });
     this.#takeSearching(line);
   }
@@ -357,6 +367,7 @@ export class XyzReader {
   }
 
   #emit(builder: FrameBuilder, rest: Pick<FramePlace, "lineCount" | "fault" | "noteLines">): void {
+    this.#settleCapitals(builder);
     const { elements: own, fault } = builder;
     const elements = fault || rest.fault ? own : this.#shareElements(own);
     const frame = finishFrame(builder, { file: this.#file, number: this.#number(), elements, ...rest });
@@ -367,6 +378,24 @@ export class XyzReader {
       this.#remarkOnce("X18", { line: builder.numbersForSymbols, message });
     }
     this.#out.push(frame);
+  }
+
+  /** Names in capitals become elements, or stay labels, as chosen or as the bonds of the first frame say. */
+  #settleCapitals(builder: FrameBuilder): void {
+    const { capitals, elements, positions, labels } = builder;
+    const first = capitals[0];
+    if (!first || builder.fault) return;
+    const choice = this.#choices.capitals;
+    const chosen = choice === "label" || choice === "element" ? choice : null;
+    this.#capitals ??= chosen ?? proposeCapitals(capitals, elements, positions);
+    if (choice === AS_PROPOSED) {
+      builder.open.set("capitals", openCapitals(capitals, this.#capitals, builder.line + 2 + first.atom));
+    }
+    if (this.#capitals === "label") return;
+    for (const { atom, two } of capitals) {
+      elements[atom] = two;
+      if (labels) labels[atom] = null;
+    }
   }
 
   /** The array of the frame before where it says the same. */

@@ -1,13 +1,15 @@
 import { perceiveChirality } from "../chem/chirality.ts";
 import { hillFormula } from "../chem/formula.ts";
+import { graphSignature } from "../chem/signature.ts";
 import type { Configuration } from "../chem/stereo.ts";
 import { type StatedOrders, statedOrders } from "../sdf/orders.ts";
 import { type Graph, makeGraph } from "../structure.ts";
 import { CopyFinder } from "./copies.ts";
-import { FrameKinds } from "./frame-kinds.ts";
+import { type BondKind, FrameKinds } from "./frame-kinds.ts";
 import type { ClassifierFrame, FrameRecord, FrameVerdict, MoleculeGroup } from "./frame-record.ts";
 import { FrameJudge } from "./judge.ts";
 import { OrderMapper } from "./order-mapper.ts";
+import type { MoleculeChoice } from "./reading-questions.ts";
 import type { IntakeMessage } from "./report.ts";
 import { chooseGroup } from "./vote.ts";
 
@@ -26,6 +28,8 @@ export interface Classification {
   chiralityNote: string;
   /** On the ensemble as a whole: fragments, distances that are contested throughout. */
   messages: IntakeMessage[];
+  /** The molecules that the frames show, the one with most frames first; of equal ones that met first. */
+  molecules: MoleculeChoice[];
   /** Orders of the group's bonds, with charges and radicals, as the files state them; null where they do not. */
   table: Required<StatedOrders> | null;
 }
@@ -119,7 +123,7 @@ export class FrameClassifier {
     // A further batch without a table is read with the one that the ensemble has.
     const withSeen = table === null && this.given?.seen !== undefined && sameElements(elements, this.given);
     const trace = this.kinds.trace(elements, isotopes, positions, withSeen ? this.givenTable : table);
-    const mapping = trace.kind && this.mapper ? this.mapper.mapping(trace.kind) : null;
+    const mapping = trace.kind && this.mapper && frame.map !== false ? this.mapper.mapping(trace.kind) : null;
     if (mapping === null || this.mapper === null) return { trace, positions, mapping: null };
     this.kinds.takeBack(trace);
     const own = this.mapper.graph;
@@ -132,11 +136,15 @@ export class FrameClassifier {
    * Decides what the ensemble is and judges every frame against it. May be called more than once.
    *
    * @param options.preferFrames frames that decide alone, where a person picks another group
+   * @param options.like a frame of the molecule that a person picks: all frames of it decide
    */
-  finish(options: { preferFrames?: readonly number[] } = {}): Classification {
+  finish(options: { preferFrames?: readonly number[]; like?: number } = {}): Classification {
     const preferred = new Set(options.preferFrames);
     const usable = this.records.filter((record) => record.kind !== null);
-    const voters = usable.filter((record) => preferred.has(record.frame));
+    const picked = usable.find((record) => record.frame === options.like);
+    const voters = picked
+      ? usable.filter((record) => moleculeKey(record) === moleculeKey(picked))
+      : usable.filter((record) => preferred.has(record.frame));
     const group = this.given ?? chooseGroup(voters.length > 0 ? voters : usable);
     if (!group) return nothing(this.records);
     const graph = graphOf(group);
@@ -149,6 +157,7 @@ export class FrameClassifier {
       shape: this.kinds.shapes.find((shape) => judge.hasOrder(shape))?.id ?? null,
       ...chirality(graph, group.configuration),
       messages: judge.overall(this.records[0]?.file ?? ""),
+      molecules: moleculesOf(usable),
       table: this.tableOf(graph),
     };
   }
@@ -161,6 +170,42 @@ export class FrameClassifier {
     }
     return null;
   }
+}
+
+/** So many molecules are told apart; more of them are no choice. */
+const MOST_MOLECULES = 200;
+
+/** Composition, charge and bonds, whatever the order of the atoms. */
+function moleculeKey({ shape, charge, kind }: FrameRecord): string {
+  if (!kind) return "";
+  let signature = signatures.get(kind);
+  if (signature === undefined) {
+    signature = graphSignature(kind.graph);
+    signatures.set(kind, signature);
+  }
+  return `${shape.composition} ${charge ?? ""} ${signature}`;
+}
+const signatures = new WeakMap<BondKind, string>();
+
+function moleculesOf(records: readonly FrameRecord[]): MoleculeChoice[] {
+  const kinds = new Set(records.map(({ kind }) => kind));
+  if (kinds.size < 2 || kinds.size > MOST_MOLECULES) return [];
+  const found = new Map<string, { record: FrameRecord; frames: number }>();
+  for (const record of records) {
+    const key = moleculeKey(record);
+    const known = found.get(key);
+    if (known) known.frames += 1;
+    else found.set(key, { record, frames: 1 });
+  }
+  return [...found.values()]
+    .sort((a, b) => b.frames - a.frames)
+    .map(({ record, frames }, k) => ({
+      frame: record.frame,
+      frames,
+      formula: hillFormula(record.shape.elements, record.shape.isotopes),
+      charge: record.charge,
+      proposed: k === 0,
+    }));
 }
 
 function sameElements(elements: Uint8Array, group: MoleculeGroup): boolean {
@@ -203,6 +248,7 @@ function nothing(records: readonly FrameRecord[]): Classification {
     chirality: "achiral",
     chiralityNote: "",
     messages: [],
+    molecules: [],
     table: null,
   };
 }

@@ -22,6 +22,8 @@ export interface ClassifierFrame {
   energy?: string | null;
   /** Bonds as the file states them; they count, and the distances only have to agree. Kept, not copied. */
   table?: StatedOrders | null;
+  /** False where a frame in another order of atoms is to stay as it is. */
+  map?: boolean;
 }
 
 /** What the frames of an ensemble have in common. Plain JSON, so that a later batch is compared with the same. */

@@ -1,8 +1,11 @@
+import { AS_PROPOSED, type OpenReading, type ReadingChoices } from "../intake/reading-choices.ts";
 import type { IntakeMessage } from "../intake/report.ts";
 import { hasSteeringCharacters, quoteFound } from "../text/escape.ts";
+import type { AtomFault } from "../xyz/atom-line.ts";
 import { type FrameProblem, NOTE_LENGTH } from "../xyz/frame.ts";
 import type { BuilderFault } from "../xyz/frame-builder.ts";
 import { looksLikeBohr } from "../xyz/geometry-checks.ts";
+import { fromBohr, readLengths } from "../xyz/open-frame.ts";
 import type { FieldCollector } from "./data-fields.ts";
 import { EXACT_FIELD, exactCoordinates } from "./exact-coordinates.ts";
 import type { SdfFrame } from "./frame.ts";
@@ -16,6 +19,41 @@ export interface RecordPlace {
   readonly lineCount: number;
 }
 
+/** What a record leaves open (rows S12, X27), read as the choices say. */
+class OpenRecord {
+  readonly readings: OpenReading[] = [];
+  readonly remarks: RecordRemark[] = [];
+  bohr = false;
+
+  constructor(
+    private readonly choices: ReadingChoices,
+    private readonly line: number,
+  ) {}
+
+  /** The fault, where the choices do not take it away. */
+  hydrogens(fault: AtomFault, atoms: number): AtomFault | null {
+    const { choices, line } = this;
+    const choice = choices.hydrogens;
+    if (fault.code !== "S12" || (choice !== AS_PROPOSED && choice !== "heavy")) return fault;
+    const missing = fault.message.split(" ")[0] ?? "";
+    const shown = { heavy: `${atoms} atoms`, hold: `${missing} H missing` };
+    if (choice === AS_PROPOSED) this.readings.push({ ask: "hydrogens", proposed: "hold", line, shown });
+    else {
+      const message = `${fault.message} The record is used with the atoms that it lists: results are those of the heavy atoms only.`;
+      this.remarks.push({ code: "S12", line, message });
+    }
+    return null;
+  }
+
+  /** True where the record stays held for its lengths. */
+  lengths(positions: Float64Array): boolean {
+    const read = readLengths(true, this.choices, positions, this.line);
+    this.bohr = read.bohr;
+    if (read.open) this.readings.push(read.open);
+    return read.held;
+  }
+}
+
 const NO_KEYS = new Map<string, never>();
 const NO_COLUMNS: readonly never[] = [];
 const NO_REMARKS: readonly never[] = [];
@@ -26,16 +64,20 @@ export function finishRecord(
   data: FieldCollector,
   topologies: Topologies,
   place: RecordPlace,
+  choices: ReadingChoices = {},
 ): SdfFrame {
   const { head, version, chiralFlag, line } = builder;
   const dimension = dimensionOf(head.program);
   const topology = builder.fault === null && builder.count > 0 ? topologies.of(builder) : null;
-  const fault = builder.fault ?? checkWhole(builder, topology, dimension);
+  const open = new OpenRecord(choices, line);
+  const fault = builder.fault ?? checkWhole(builder, topology, dimension, open);
   if (fault) return heldFrame(builder, data, place, problemOf(fault, place), dimension);
   const { charge, multiplicity, elements, isotopes, bonds, orders, charges, radicals } = topology!;
   const { positions, remark } = takeExact(builder, data);
   const remarks = collectRemarks(builder, data, topology!, dimension);
   if (remark) remarks.push(remark);
+  remarks.push(...open.remarks);
+  if (open.bohr) fromBohr(positions);
   // Written out: spreading objects of this size costs as much as reading the atoms.
   return {
     number: place.number,
@@ -56,6 +98,7 @@ export function finishRecord(
     extra: NO_COLUMNS,
     note: noteOf(data),
     problem: null,
+    ...(open.readings.length > 0 ? { open: open.readings } : {}),
     remarks: remarks.length === 0 ? NO_REMARKS : remarks.map((one) => toMessage(one, place)),
     program: head.program,
     version,
@@ -140,6 +183,7 @@ function checkWhole(
   builder: RecordBuilder,
   topology: Topology | null,
   dimension: 2 | 3 | null,
+  open: OpenRecord,
 ): BuilderFault | null {
   const { line } = builder;
   if (topology === null) {
@@ -155,8 +199,9 @@ function checkWhole(
       hint: "Write the conformers with their three-dimensional coordinates.",
     };
   }
-  if (topology.fault) return { ...topology.fault, line };
-  if (!looksLikeBohr(builder.elements, builder.positions)) return null;
+  const fault = topology.fault && open.hydrogens(topology.fault, builder.count);
+  if (fault) return { ...fault, line };
+  if (!looksLikeBohr(builder.elements, builder.positions) || !open.lengths(builder.positions)) return null;
   return {
     code: "X27",
     reason: "unclear",

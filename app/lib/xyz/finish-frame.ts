@@ -1,10 +1,12 @@
 import { atomName } from "../chem/elements.ts";
 import type { ExtendedEntry, ExtendedValue } from "../intake/extended-comment.ts";
+import { AS_PROPOSED } from "../intake/reading-choices.ts";
 import type { IntakeMessage } from "../intake/report.ts";
 import { hasSteeringCharacters, quoteFound } from "../text/escape.ts";
 import { type FrameProblem, NOTE_LENGTH, type XyzFrame } from "./frame.ts";
 import type { BuilderFault, FrameBuilder } from "./frame-builder.ts";
 import { bondAcrossCell, looksLikeBohr } from "./geometry-checks.ts";
+import { fromBohr, readLengths } from "./open-frame.ts";
 
 /** What the reader knows of a frame beyond its lines. */
 export interface FramePlace {
@@ -47,7 +49,18 @@ export function finishFrame(builder: FrameBuilder, place: FramePlace): XyzFrame 
     extra: builder.extraColumns(),
     note: noteOf(builder, place),
     problem: fault && problemOf(fault, place),
+    ...(sound ? openOf(builder) : {}),
     remarks: sound ? remarks.map((remark) => ({ ...remark, ...severityAndPlace(place) })) : [],
+  };
+}
+
+/** What is still to be asked: what was answered is read as it was. */
+function openOf({ open, choices }: FrameBuilder): Pick<XyzFrame, "open" | "decimalCommas"> {
+  if (open.size === 0) return {};
+  const asked = [...open.values()].filter(({ ask }) => choices[ask] === AS_PROPOSED);
+  return {
+    ...(asked.length === 0 ? {} : { open: asked }),
+    ...(open.has("decimal-comma") ? { decimalCommas: true } : {}),
   };
 }
 
@@ -138,7 +151,12 @@ const NAMES_BOHR = /(?<![\w*·/^-])bohrs?(?![\w*·/^-])/i;
 
 function checkUnit(builder: FrameBuilder): BuilderFault | null {
   const word = [builder.countLine.note ?? "", builder.comment ?? ""].some((text) => NAMES_BOHR.test(text));
-  if (!word && !looksLikeBohr(builder.elements, builder.positions)) return null;
+  const looks = looksLikeBohr(builder.elements, builder.positions);
+  if (!word && !looks) return null;
+  const read = readLengths(looks, builder.choices, builder.positions, builder.line);
+  if (read.bohr) fromBohr(builder.positions);
+  if (read.open) builder.open.set("lengths", read.open);
+  if (!read.held) return null;
   return {
     code: "X27",
     reason: "unclear",

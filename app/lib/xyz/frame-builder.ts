@@ -4,8 +4,10 @@ import {
   hasProperties,
   parseExtendedComment,
 } from "../intake/extended-comment.ts";
+import type { Ask, OpenReading, ReadingChoices } from "../intake/reading-choices.ts";
 import {
   type AtomFault,
+  type AtomLine,
   looksLikeAtom,
   makeAtom,
   type NamedAtom,
@@ -14,6 +16,8 @@ import {
 } from "./atom-line.ts";
 import type { CountLine } from "./count-line.ts";
 import { type ExtraColumn, isPlainOrder, type Layout, PLAIN_LAYOUT, parseProperties } from "./layout.ts";
+import type { OpenCapitals } from "./open-frame.ts";
+import { readOpenLine } from "./open-line.ts";
 import type { NamedElement, PlainTarget } from "./plain-atoms.ts";
 
 /** A fault with the line it stands on, and the atom (from 1) where it concerns one. */
@@ -65,8 +69,13 @@ export class FrameBuilder implements PlainTarget {
   carets = 0;
   substitutions = 0;
   commaLines = 0;
+  /** What was open and read as the choices say, the first line of each kind. */
+  readonly open = new Map<Ask, OpenReading>();
+  readonly capitals: OpenCapitals[] = [];
+  readonly choices: ReadingChoices;
 
-  constructor(countLine: CountLine, line: number) {
+  constructor(countLine: CountLine, line: number, choices: ReadingChoices = {}) {
+    this.choices = choices;
     this.count = countLine.count;
     this.countLine = countLine;
     this.line = line;
@@ -146,12 +155,25 @@ export class FrameBuilder implements PlainTarget {
     }
     if (NO_ATOM.test(line.text)) return false;
     this.makeRoom();
-    const result = readAtomLine(line.text, this.layout, this.positions, 3 * this.read);
+    let result = readAtomLine(line.text, this.layout, this.positions, 3 * this.read);
+    if (result.kind !== "atom") result = this.#readOpen(line, this.layout) ?? result;
     if (result.kind === "other") return false;
     if (result.kind === "fault") this.#note({ ...result.fault, line: line.number, atom: this.read + 1 });
     else this.#put(result.atom, line);
     this.read += 1;
     return true;
+  }
+
+  /** The line as the choices say to read it, where it leaves something open. */
+  #readOpen(line: TextLine, layout: Layout): AtomLine | null {
+    const { read, positions, choices } = this;
+    const found = readOpenLine(line.text, layout, positions, read, choices);
+    if (found === null) return null;
+    for (const one of found.open) {
+      if (!this.open.has(one.ask)) this.open.set(one.ask, { ...one, line: line.number });
+    }
+    if (found.capitals) this.capitals.push({ atom: read, ...found.capitals });
+    return found.result;
   }
 
   #note(fault: BuilderFault): void {

@@ -1,4 +1,5 @@
 import type { ExtendedEntry } from "../intake/extended-comment.ts";
+import type { OpenReading } from "../intake/reading-choices.ts";
 import type { HoldReason, IntakeMessage } from "../intake/report.ts";
 import type { ExtraColumn } from "./layout.ts";
 
@@ -43,6 +44,10 @@ export interface XyzFrame {
   /** What stands behind the count, or on lines after the frame; at most 2,000 characters. */
   readonly note: string | null;
   readonly problem: FrameProblem | null;
+  /** What the frame leaves open and was read as proposed; left out where nothing is open. */
+  readonly open?: readonly OpenReading[];
+  /** Its numbers have decimal commas, those of its comment too. */
+  readonly decimalCommas?: boolean;
   readonly remarks: readonly IntakeMessage[];
 }
 

@@ -21,7 +21,8 @@ function nearestRatio(elements: Uint8Array, positions: Float64Array, atom: numbe
 
 /**
  * Whether the distances look like bohr read as Å: nobody has a bond, and the typical nearest neighbour lies at about
- * 1.9 times the summed covalent radii (row X27). Bounds 1.5 and 2.3 are ours: bonds run from 0.8 to 1.2.
+ * 1.9 times the summed covalent radii (row X27). Bounds 1.4 for each atom (triple bonds of 1.15 Å come to 1.49 in bohr),
+ * 1.45 and 2.3 for the middle one are ours: bonds run from 0.8 to 1.2.
  *
  * Costs one pass over the atoms for any molecule in Å, as its first atom is bonded.
  */
@@ -30,12 +31,13 @@ export function looksLikeBohr(elements: Uint8Array, positions: Float64Array): bo
   for (let atom = 0; atom < elements.length; atom++) {
     if (COVALENT_RADII[elements[atom]!] === 0) continue;
     const ratio = nearestRatio(elements, positions, atom);
-    if (ratio < 1.5) return false;
+    if (ratio < 1.4) return false;
     ratios.push(ratio);
   }
   if (ratios.length < 3) return false;
   ratios.sort((a, b) => a - b);
-  return ratios[ratios.length >> 1]! < 2.3;
+  const middle = ratios[ratios.length >> 1]!;
+  return middle >= 1.45 && middle < 2.3;
 }
 
 /**

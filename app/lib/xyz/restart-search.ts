@@ -1,3 +1,4 @@
+import type { ReadingChoices } from "../intake/reading-choices.ts";
 import { readCountLine } from "./count-line.ts";
 import { FrameBuilder, type TextLine } from "./frame-builder.ts";
 
@@ -14,6 +15,8 @@ export interface RestartOptions {
    * a broken frame behind a note is still seen.
    */
   readonly need: "whole" | "start";
+  /** How to read what the file leaves open. */
+  readonly choices?: ReadingChoices;
 }
 
 export interface Restart {
@@ -82,7 +85,7 @@ export class RestartSearch {
     if (this.#first && this.#second) return;
     const count = readCountLine(line.text, this.#options.anyCountNote);
     if (!count || count.count < 1 || count.count > this.#options.maxAtoms) return;
-    const builder = new FrameBuilder(count, line.number);
+    const builder = new FrameBuilder(count, line.number, this.#options.choices);
     if (!this.#first) this.#first = builder;
     else {
       this.#second = builder;

@@ -2,11 +2,13 @@ import { and, eq, isNull } from "drizzle-orm";
 import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { ensembles, questions as questionTable } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { readAskId } from "../../lib/intake/reading-questions.ts";
 import type { IntakeQuestion } from "../../lib/intake/report.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
+import { answerReading, type ReadingAnswer } from "./answer-reading.server.ts";
 import { countFrames } from "./intake-rows.server.ts";
 import { findQuestions } from "./load-intake.server.ts";
 import { type EnsembleRow, settleAnswers } from "./settle-answers.server.ts";
@@ -93,6 +95,14 @@ async function refresh(tx: Transaction, at: At, ensemble: EnsembleRow): Promise<
     .where(eq(ensembles.id, at.ensembleId));
 }
 
+function answeredBefore(question: IntakeQuestion): DomainError {
+  return new DomainError(
+    "conflict",
+    "Answered before",
+    `"${question.text}" was answered "${question.answered}" before. Read the files again to answer it anew.`,
+  );
+}
+
 const ORDER = ["energy-from", "energy-unit", "level"];
 
 async function answerAll(tx: Transaction, at: At, answers: readonly Answer[]): Promise<void> {
@@ -106,11 +116,7 @@ async function answerAll(tx: Transaction, at: At, answers: readonly Answer[]): P
     // The same answer again is a call repeated after a lost connection.
     if (question.answered === kept) continue;
     if (question.answered !== undefined) {
-      throw new DomainError(
-        "conflict",
-        "Answered before",
-        `"${question.text}" was answered "${question.answered}" before. Read the files again to answer it anew.`,
-      );
+      throw answeredBefore(question);
     }
     await markAnswered(tx, at, question, kept);
     await record(tx, at, question, kept, await settleAnswers(tx, ensemble));
@@ -130,6 +136,22 @@ export async function answerQuestions(options: {
   answers: readonly Answer[];
 }): Promise<void> {
   const at = await accessEnsemble(options.actor, "take-in", options.ensembleId);
-  await inTransaction((tx) => answerAll(tx, at, options.answers));
+  const given = await readingAnswers(at, options.answers);
+  const energies = options.answers.filter(({ id }) => readAskId(id) === null);
+  if (energies.length > 0) await inTransaction((tx) => answerAll(tx, at, energies));
+  await answerReading(at, given);
   await siftAfterIntake(at);
+}
+
+/** Answers about the reading of the files, checked before any of the call is taken up; those given before are left out. */
+async function readingAnswers(at: At, answers: readonly Answer[]): Promise<ReadingAnswer[]> {
+  const asked = await findQuestions(at.ensembleId);
+  return answers.flatMap(({ id, option }) => {
+    if (readAskId(id) === null) return [];
+    const question = asked.find((one) => one.id === id);
+    if (question === undefined) throw invalid(`Intake asked no question "${id}".`);
+    if (question.answered === option) return [];
+    if (question.answered !== undefined) throw answeredBefore(question);
+    return [{ question, option: checkOption(question, option) }];
+  });
 }

@@ -4,6 +4,7 @@ import { batches, ensembles } from "../../db/schema.server.ts";
 import { type BatchFields, batchFieldsSchema } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
+import { recomputeComputed } from "../columns/recompute-computed.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
@@ -12,6 +13,7 @@ import { checkSameBatch, ensureFirstBatch, findSameBatch } from "./batches.serve
 import { type CompletedBatch, completeBatch, numberOf, ownLevel } from "./complete-batch.server.ts";
 import { bondTableOf, type WrittenAnswers } from "./complete-reading.server.ts";
 import { countFrames } from "./intake-rows.server.ts";
+import { findQuestions } from "./load-intake.server.ts";
 import { mergeBatch } from "./merge-batch.server.ts";
 import type { FormReader } from "./read-multipart.server.ts";
 import { type EndedReading, readStored, type StoredFile, sourcesOf, takeBack } from "./read-stored.server.ts";
@@ -115,12 +117,15 @@ async function join(tx: Transaction, joining: Joining): Promise<{ joined: boolea
     .update(ensembles)
     .set({
       ...counts,
+      openQuestions: (await findQuestions(at.ensembleId, tx)).filter(({ answered }) => answered === undefined)
+        .length,
       bondTable: row.bondTable ?? bondTableOf(result),
       acceptedSha: await acceptedSha(tx, at.ensembleId),
       version: row.version + 1,
       changedAt: new Date(),
     })
     .where(eq(ensembles.id, at.ensembleId));
+  await recomputeComputed(tx, at.ensembleId);
   await writeEntry(tx, at, at, {
     type: "batch",
     data: {

@@ -2,6 +2,7 @@ import { eq, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { ensembleFiles, type ensembles } from "../../db/schema.server.ts";
 import type { MoleculeGroup } from "../../lib/intake/frame-record.ts";
+import type { ReadingChoices } from "../../lib/intake/reading-choices.ts";
 import { unpackMolecule } from "./molecule.server.ts";
 import type { ReadingOptions } from "./reading.server.ts";
 
@@ -42,9 +43,14 @@ export function groupOf(ensemble: EnsembleRow): MoleculeGroup {
 }
 
 /** How the files of a batch are read: behind what is there, compared with its molecule. */
-export const optionsAt = ({ ensemble, files }: BatchPlace, energyFrom: string | null): ReadingOptions => ({
+export const optionsAt = (
+  { ensemble, files, batch }: BatchPlace,
+  energyFrom: string | null,
+  choices: ReadingChoices = {},
+): ReadingOptions => ({
   energyFrom,
   group: groupOf(ensemble),
   map: true,
-  after: { frames: ensemble.frames, files },
+  after: { frames: ensemble.frames, files, batch },
+  choices,
 });

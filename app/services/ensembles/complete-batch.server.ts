@@ -8,8 +8,8 @@ import { decideEnergies, type EnergyAnswers, NO_ENERGY } from "../../lib/intake/
 import type { EnergyFindings } from "../../lib/intake/energies.ts";
 import type { IntakeMessage } from "../../lib/intake/report.ts";
 import { type NewColumn, settleEnergies } from "../../lib/intake/settle-energies.ts";
-import { insertFiles, listed, scanWith } from "./complete-reading.server.ts";
-import { insertMessages, remarkFrames } from "./intake-rows.server.ts";
+import { insertFiles, listed, scanWith, usable } from "./complete-reading.server.ts";
+import { insertMessages, insertQuestions, remarkFrames } from "./intake-rows.server.ts";
 import type { Reading, ReadResult } from "./reading.server.ts";
 
 type EnsembleRow = typeof ensembles.$inferSelect;
@@ -101,8 +101,7 @@ export async function completeBatch(
   options: { stated: EnergyAnswers; kindStated: boolean; sources: readonly string[]; batch: number },
 ): Promise<CompletedBatch> {
   const { stated } = options;
-  const held = new Set([...result.decisions.values()].filter((d) => d.state === "held").map((d) => d.number));
-  const accepted = (frame: number) => !held.has(frame);
+  const accepted = usable(result);
   const level = await ownLevel(ensemble, stated.level);
   const findings = await findNumber(reading, result, stated, level, accepted);
   const known = batchAnswers(findings, result.group.elements, stated, level);
@@ -129,6 +128,7 @@ export async function completeBatch(
   result.messages.addAll(messages);
   await insertMessages(db, reading.ensembleId, listed(result, accepted));
   await insertFiles(reading, options.sources, options.batch);
+  await insertQuestions(db, reading.ensembleId, result.questions);
   return { columns: settled.columns };
 }
 

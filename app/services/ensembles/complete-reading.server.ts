@@ -50,7 +50,8 @@ export function bondTableOf({
 export async function scanWith(reading: Reading, result: ReadResult, energyFrom: string | null) {
   const named = energyFrom === "none" ? null : energyFrom;
   if (reading.options.energyFrom === named) return result;
-  return scanComments(reading.ensembleId, result.files, named);
+  const { decimalCommas } = reading;
+  return scanComments(reading.ensembleId, result.files, named, { decimalCommas });
 }
 
 export interface CompletedReading {
@@ -78,8 +79,7 @@ export async function completeReading(
 ): Promise<CompletedReading> {
   const { ensembleId } = reading;
   const { answers, mode } = options;
-  const held = new Set([...result.decisions.values()].filter((d) => d.state === "held").map((d) => d.number));
-  const accepted = (frame: number) => !held.has(frame);
+  const accepted = usable(result);
   const scanned = await scanWith(reading, result, answers.energyFrom);
   const findings = scanned.scan.finish(accepted);
   const decision = decideEnergies(findings, result.group.elements, answers, {
@@ -97,9 +97,10 @@ export async function completeReading(
           frames: result.frames,
           accepted,
         });
-  const questions = decision.kind === "ask" ? decision.questions : [];
+  const open = decision.kind === "ask" ? decision.questions : [];
+  const questions = [...result.questions, ...open];
   if (settled) await remarkFrames(db, ensembleId, settled.messages);
-  if (questions.length > 0) await holdForAnswers(db, ensembleId);
+  if (open.length > 0) await holdForAnswers(db, ensembleId);
   result.messages.addAll(settled?.messages ?? []);
   await insertColumns(db, ensembleId, settled?.columns ?? []);
   await insertQuestions(db, ensembleId, questions);
@@ -108,6 +109,15 @@ export async function completeReading(
   const energies = settled?.columns.find((column) => column.kind === "energy") ?? null;
   const counts = await writeMolecule(reading, result, options.written, questions.length, energies);
   return { counts, questions: questions.length };
+}
+
+/** Frames that take part, those that wait for an answer included. */
+export function usable({ decisions }: ReadResult): (frame: number) => boolean {
+  const held = new Set<number>();
+  for (const { number, state, holdReason } of decisions.values()) {
+    if (state === "held" && holdReason !== "waits-for-answer") held.add(number);
+  }
+  return (frame) => !held.has(frame);
 }
 
 /** One message a frame that is held: why; its remarks would only hide that. */

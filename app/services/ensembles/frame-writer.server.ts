@@ -30,6 +30,8 @@ export interface NewFrame {
 export interface FrameDecision {
   number: number;
   state: FrameState;
+  /** What a frame that waits for an answer is without that; the state itself where left out. */
+  readState?: FrameState;
   holdReason: HoldReason | null;
   note: string | null;
 }
@@ -107,7 +109,7 @@ export async function writeDecisions(ensembleId: string, decisions: readonly Fra
         fields: null,
         mapping: null,
         state: decision.state,
-        readState: decision.state,
+        readState: decision.readState ?? decision.state,
         holdReason: decision.holdReason,
         note: note(decision.note),
       })),

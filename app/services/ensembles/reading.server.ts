@@ -13,7 +13,18 @@ import { energiesAsWritten } from "../../lib/intake/field-energies.ts";
 import { formatMessage } from "../../lib/intake/format-message.ts";
 import type { MoleculeGroup } from "../../lib/intake/frame-record.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
+import {
+  AS_PROPOSED,
+  type Ask,
+  HOLD,
+  type OpenReading,
+  type ReadingChoices,
+  withDecimalPoints,
+  withProposals,
+} from "../../lib/intake/reading-choices.ts";
+import { groupQuestion, PREVIEWS, readingQuestion } from "../../lib/intake/reading-questions.ts";
 import { IntakeRejection } from "../../lib/intake/reject.ts";
+import type { IntakeQuestion } from "../../lib/intake/report.ts";
 import { isSdfFrame } from "../../lib/sdf/frame.ts";
 import { SDF_READER_VERSION, SdfReader } from "../../lib/sdf.server.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
@@ -32,6 +43,8 @@ const PIECE_BYTES = 65_536;
  * on longer is no structure file, and a small packed one could keep the reader busy for minutes.
  */
 const BARREN = { bytes: 16 * 2 ** 20, lines: 100_000 };
+/** Molecules that are offered to choose from. */
+const MOST_CHOICES = 12;
 /** How often a row in flight shows that its upload lives. */
 const SIGN_OF_LIFE_MS = 60_000;
 
@@ -53,8 +66,10 @@ export interface ReadingOptions {
   group?: MoleculeGroup;
   /** Frames of that molecule in another order of atoms are put into its order. */
   map?: boolean;
-  /** A further batch: frames and files that the ensemble has already. */
-  after?: { frames: number; files: number };
+  /** A further batch: frames and files that the ensemble has already, and its number from 0. */
+  after?: { frames: number; files: number; batch: number };
+  /** What was answered of how the files are to be read; the rest is read as proposed and asked. */
+  choices?: ReadingChoices;
 }
 
 /** Frames, molecule and messages of an upload, once all its files are read. */
@@ -69,6 +84,8 @@ export interface ReadResult {
   shape: number | null;
   /** Frames of the molecule wait in another order of atoms: they can be mapped now that the group is known. */
   otherOrder: boolean;
+  /** What the files leave open of how they are to be read. */
+  questions: IntakeQuestion[];
   /** Final states of frames that the judge did not simply accept. */
   decisions: Map<number, FrameDecision>;
   messages: MessageList;
@@ -90,6 +107,13 @@ function noFrames(file: string, lastLine: number): IntakeRejection {
   });
 }
 
+/** How the first atoms of a frame in another order would be mapped. */
+function openOrder(frame: XyzFrame, mapping: Int32Array): OpenReading {
+  const moved = [...mapping].flatMap((from, to) => (from === to ? [] : [`${from + 1}→${to + 1}`]));
+  const shown = { map: moved.slice(0, 3).join(" "), hold: "as it is" };
+  return { ask: "order", proposed: "map", line: frame.line, shown };
+}
+
 /**
  * Reads the files of one upload into rows that nobody sees yet: coordinates in blocks, frames, and in memory only what
  * does not grow with their comments and coordinates. `discard` leaves nothing behind.
@@ -108,6 +132,13 @@ export class Reading {
   readonly options: ReadingOptions;
   private readonly labels = new Map<number, (string | null)[]>();
   private readonly formats = new Set<string>();
+  private readonly choices: ReadingChoices;
+  /** Frames that wait for an answer, with the state that their reader gave them. */
+  private readonly waiting = new Map<number, "accepted" | "remarked">();
+  /** What is asked, of how many frames, and the first of them. */
+  private readonly asked = new Map<Exclude<Ask, "group">, { frames: number; first: OpenReading[] }>();
+  /** Numbers of some frames have decimal commas. */
+  decimalCommas = false;
   private frames = 0;
   private sources = 0;
   private sound = 0;
@@ -119,6 +150,7 @@ export class Reading {
   constructor(teamId: string, options: ReadingOptions) {
     this.teamId = teamId;
     this.options = options;
+    this.choices = withProposals(options.choices ?? {});
     this.blocks = new BlockWriter(this.ensembleId);
     this.rows = new FrameWriter(this.ensembleId);
     this.classifier = new FrameClassifier({ group: options.group, map: options.map });
@@ -198,6 +230,7 @@ export class Reading {
       file: name,
       firstNumber: before + 1,
       limits: { frames: settings.MAX_FRAMES, atoms: settings.MAX_ATOMS },
+      choices: this.choices,
     });
     const position = this.files.length + (after?.files ?? 0);
     const had = this.frames;
@@ -267,11 +300,15 @@ export class Reading {
       multiplicity: frame.multiplicity,
       energy: sdf ? energiesAsWritten(sdf.fields) : comment === "" ? null : comment,
       table: sdf,
+      // A record of an SDF is mapped without asking (row S22), a frame of XYZ once somebody said so (X13).
+      map: sdf !== null || this.choices.order !== HOLD,
     });
     const { shape, indexInShape, mapping } = place;
     await this.blocks.add(shape, place.positions);
     this.messages.addAll(frame.remarks);
-    this.scan.add({ number, file: frame.file, line }, comment, sdf?.fields);
+    if (frame.decimalCommas) this.decimalCommas = true;
+    const numbers = frame.decimalCommas ? withDecimalPoints(comment) : comment;
+    this.scan.add({ number, file: frame.file, line }, numbers, sdf?.fields);
     if (this.sound === 0) this.firstComment = comment;
     this.sound += 1;
     if (sdf ? sdf.fields.size > 0 : isExtended(comment)) this.extended += 1;
@@ -279,7 +316,25 @@ export class Reading {
       this.labels.set(shape, [...frame.labels]);
     const note = frame.remarks[0]?.message ?? null;
     const state = note === null ? "accepted" : "remarked";
+    this.askOf(frame, mapping, state);
     await this.rows.add({ ...row, shape, indexInShape, mapping, state, holdReason: null, note });
+  }
+
+  /** Notes what a frame leaves open; it is held until that is answered. */
+  private askOf(frame: XyzFrame, mapping: Int32Array | null, state: "accepted" | "remarked"): void {
+    const open = [...(frame.open ?? [])];
+    if (mapping !== null && !isSdfFrame(frame) && this.choices.order === AS_PROPOSED) {
+      open.push(openOrder(frame, mapping));
+    }
+    if (open.length === 0) return;
+    this.waiting.set(frame.number, state);
+    for (const reading of open) {
+      if (reading.ask === "group") continue;
+      const asked = this.asked.get(reading.ask) ?? { frames: 0, first: [] };
+      this.asked.set(reading.ask, asked);
+      asked.frames += 1;
+      if (asked.first.length < PREVIEWS) asked.first.push(reading);
+    }
   }
 
   /**
@@ -291,7 +346,8 @@ export class Reading {
   async end(): Promise<ReadResult> {
     await this.blocks.end();
     await this.rows.end();
-    const classification = this.classifier.finish();
+    const like = Number(/^frame:(\d+)$/.exec(this.choices.group ?? "")?.[1] ?? Number.NaN);
+    const classification = this.classifier.finish(Number.isNaN(like) ? {} : { like });
     const { group, graph, shape } = classification;
     const batch = this.options.after !== undefined;
     if (group === null || graph === null || (shape === null && !batch)) {
@@ -300,14 +356,18 @@ export class Reading {
     if (shape !== null && shape !== 0 && !batch) await this.makeFirst(shape);
     const decisions = new Map<number, FrameDecision>();
     for (const verdict of classification.frames) {
-      if (verdict.state === "accepted") continue;
+      const waits = this.waiting.get(verdict.frame);
+      if (verdict.state === "accepted" && waits === undefined) continue;
       this.messages.addAll(verdict.messages);
-      decisions.set(verdict.frame, {
-        number: verdict.frame,
-        state: verdict.state,
-        holdReason: verdict.reason,
-        note: verdict.messages[0]?.message ?? null,
-      });
+      const note = verdict.messages[0]?.message ?? null;
+      const { frame: number, state, reason } = verdict;
+      if (waits === undefined || state === "held") {
+        decisions.set(number, { number, state, holdReason: reason, note });
+        continue;
+      }
+      const readState = state === "remarked" ? state : waits;
+      const holdReason = "waits-for-answer" as const;
+      decisions.set(number, { number, state: "held", readState, holdReason, note });
     }
     this.messages.addAll(classification.messages);
     await writeDecisions(this.ensembleId, [...decisions.values()]);
@@ -318,7 +378,11 @@ export class Reading {
       frames: this.frames,
       files: this.files,
       shape,
-      otherOrder: classification.frames.some((verdict) => verdict.reason === "other-order"),
+      otherOrder: classification.frames.some(
+        ({ frame, reason }) =>
+          reason === "other-order" && (this.choices.order !== HOLD || this.isInSdf(frame)),
+      ),
+      questions: this.questions(classification),
       decisions,
       messages: this.messages,
       scan: this.scan,
@@ -326,6 +390,26 @@ export class Reading {
       extended: this.extended * 2 > this.sound,
       atomLabels: shape === null ? null : (this.labels.get(shape) ?? null),
     };
+  }
+
+  private isInSdf(frame: number): boolean {
+    return this.files.some(
+      ({ format, firstFrame, frames }) =>
+        format.startsWith("SDF") && frame >= firstFrame && frame < firstFrame + frames,
+    );
+  }
+
+  private questions({ molecules }: Classification): IntakeQuestion[] {
+    const batch = this.options.after?.batch ?? 0;
+    const asked = [...this.asked].map(([ask, { frames, first }]) =>
+      readingQuestion(ask, frames, first, batch),
+    );
+    const [most, next] = molecules;
+    const inSdf = this.files.some(({ format }) => format.startsWith("SDF"));
+    // A stray frame of another molecule is held and told; a choice is offered where there is one.
+    const several = most !== undefined && next !== undefined && (inSdf || 2 * next.frames >= most.frames);
+    if (this.options.group || !several || this.choices.group !== AS_PROPOSED) return asked;
+    return [...asked, groupQuestion(molecules.slice(0, MOST_CHOICES), inSdf)];
   }
 
   /** The group's sequence of elements becomes shape 0, in blocks and frames alike. */

@@ -1,6 +1,7 @@
 import { and, asc, eq, gt } from "drizzle-orm";
 import { db, inTransaction } from "../../db/client.server.ts";
 import { batches, ensembles } from "../../db/schema.server.ts";
+import type { ReadingChoices } from "../../lib/intake/reading-choices.ts";
 import type { Grant } from "../auth/access.server.ts";
 import { countFiles, optionsAt } from "./batch-place.server.ts";
 import { completeBatch, numberOf, ownLevel } from "./complete-batch.server.ts";
@@ -48,7 +49,7 @@ async function readOne(
   const place = { ensemble, files: (await countFiles(readId)).files, batch };
   const level = await ownLevel(ensemble, stated.level);
   const from = numberOf(stated.energyFrom, level);
-  const { reading, result } = await readStored(at, files, optionsAt(place, from));
+  const { reading, result } = await readStored(at, files, optionsAt(place, from, stated.reading ?? {}));
   try {
     const done = await completeBatch(reading, result, ensemble, {
       stated,
@@ -74,17 +75,23 @@ async function readOne(
  * the row in flight.
  *
  * @param files of the batches in order
- * @param before answers of the first upload until now
  */
 export async function rereadBatches(
   at: At,
   readId: string,
   files: readonly (StoredFile & { batch: number })[],
-  before: WrittenAnswers,
+  known: {
+    /** Answers of the first upload until now. */
+    before: WrittenAnswers;
+    /** How files are to be read from now on, by batch. */
+    readings: ReadonlyMap<number, ReadingChoices>;
+  },
 ): Promise<void> {
   const answers = await answersOf(at.ensembleId);
   for (const batch of new Set(files.map((file) => file.batch))) {
     const own = files.filter((file) => file.batch === batch);
-    await readOne(at, readId, own, ownAnswers(answers.get(batch) ?? NOTHING_SAID, before), batch);
+    const stated = ownAnswers(answers.get(batch) ?? NOTHING_SAID, known.before);
+    const reading = known.readings.get(batch) ?? stated.reading;
+    await readOne(at, readId, own, { ...stated, ...(reading ? { reading } : {}) }, batch);
   }
 }

@@ -11,12 +11,17 @@ import {
   questions,
 } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { type DecisionMode, type EnergyAnswers, NO_ENERGY } from "../../lib/intake/decide-energies.ts";
+import type { ReadingChoices } from "../../lib/intake/reading-choices.ts";
+import { readAskId } from "../../lib/intake/reading-questions.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
+import { recomputeComputed } from "../columns/recompute-computed.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
 import { completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
-import { countFrames, levelsInUse } from "./intake-rows.server.ts";
+import { type Counts, countFrames, levelsInUse } from "./intake-rows.server.ts";
+import { findQuestions } from "./load-intake.server.ts";
 import { findStored, readStored, sourcesOf, takeBack } from "./read-stored.server.ts";
 import { refreshChirality } from "./refresh-chirality.server.ts";
 import { rereadBatches } from "./reread-batches.server.ts";
@@ -124,8 +129,84 @@ async function checkFilesStand(tx: Transaction, ensembleId: string, readId: stri
   );
 }
 
+/** A question with its answer, which goes on standing when the files are read again. */
+type AnsweredRow = typeof questions.$inferInsert;
+
+/** What reading again starts from, and what stays of it. */
+export interface RereadPlan {
+  /** As they are kept from now on. */
+  answers: WrittenAnswers;
+  /** The same with what was asked and answered since. */
+  energies: EnergyAnswers;
+  kindStated: boolean;
+  mode: Omit<DecisionMode, "comment">;
+  /** How the files of further batches are to be read, by number; those left out stay as they are. */
+  batchReadings: ReadonlyMap<number, ReadingChoices>;
+  /** Answered questions that stay answered. */
+  keeps(id: string): boolean;
+  /** Those that this reading answers. */
+  answered: readonly { id: string; option: string; text: string; optionText: string }[];
+}
+
+async function answeredRows(tx: Transaction, at: At, plan: RereadPlan): Promise<AnsweredRow[]> {
+  const rows = await tx.select().from(questions).where(eq(questions.ensembleId, at.ensembleId));
+  const now = new Date();
+  return rows.flatMap((row) => {
+    const own = plan.answered.find(({ id }) => id === row.id);
+    if (own) return [{ ...row, answered: own.option, answeredBy: at.userId, answeredAt: now }];
+    return row.answered !== null && plan.keeps(row.id) ? [row] : [];
+  });
+}
+
+async function keepAnswered(
+  tx: Transaction,
+  ensembleId: string,
+  rows: readonly AnsweredRow[],
+): Promise<void> {
+  for (const row of rows) {
+    await tx
+      .insert(questions)
+      .values({ ...row, ensembleId })
+      .onDuplicateKeyUpdate({ set: { ensembleId } });
+  }
+}
+
+async function keepBatchReadings(tx: Transaction, ensembleId: string, plan: RereadPlan): Promise<void> {
+  const ofBatch = (batch: number) => and(eq(batches.ensembleId, ensembleId), eq(batches.batch, batch));
+  await tx.update(batches).set({ answers: plan.answers }).where(ofBatch(0));
+  for (const [batch, reading] of plan.batchReadings) {
+    const [row] = await tx.select({ answers: batches.answers }).from(batches).where(ofBatch(batch));
+    if (row)
+      await tx
+        .update(batches)
+        .set({ answers: { ...row.answers, reading } })
+        .where(ofBatch(batch));
+  }
+}
+
+async function writeDown(
+  tx: Transaction,
+  at: At,
+  plan: RereadPlan,
+  old: { answers: WrittenAnswers; accepted: number },
+  now: { questions: number } & Counts,
+): Promise<void> {
+  for (const { id, text, option, optionText } of plan.answered) {
+    const released = Math.max(0, now.accepted - old.accepted);
+    await writeEntry(tx, at, at, {
+      type: "answer",
+      data: { question: id, text, option, optionText, released },
+    });
+  }
+  if (plan.answered.length > 0) return;
+  await writeEntry(tx, at, at, {
+    type: "reread",
+    data: { before: old.answers, after: plan.answers, ...now },
+  });
+}
+
 /** The new reading takes the place of the old one, in one moment. */
-async function adopt(tx: Transaction, at: At, readId: string, questionCount: number): Promise<void> {
+async function adopt(tx: Transaction, at: At, readId: string, plan: RereadPlan): Promise<void> {
   const rows = await tx
     .select()
     .from(ensembles)
@@ -137,14 +218,16 @@ async function adopt(tx: Transaction, at: At, readId: string, questionCount: num
   await checkFilesStand(tx, old.id, readId);
   const held = await heldByHand(tx, old.id);
   const released = await releasedByHand(tx, old.id);
+  const answered = await answeredRows(tx, at, plan);
   await removeOld(tx, old.id);
   await moveNew(tx, readId, old.id);
+  await keepAnswered(tx, old.id, answered);
   await replaceColumns(tx, readId, old.id);
   await keepDecisions(tx, old.id, held, released);
-  const { answers, formula, atoms, elements, bonds, bondTable, atomLabels, identity } = read;
+  const { formula, atoms, elements, bonds, bondTable, atomLabels, identity } = read;
   const { chirality, chiralityNote, readerVersion } = read;
   const molecule = {
-    answers,
+    answers: plan.answers,
     formula,
     atoms,
     elements,
@@ -161,27 +244,54 @@ async function adopt(tx: Transaction, at: At, readId: string, questionCount: num
     .update(ensembles)
     .set({ ...molecule, readerVersion })
     .where(eq(ensembles.id, old.id));
-  await tx
-    .update(batches)
-    .set({ answers })
-    .where(and(eq(batches.ensembleId, old.id), eq(batches.batch, 0)));
+  await keepBatchReadings(tx, old.id, plan);
   const counts = await countFrames(tx, old.id);
+  const open = (await findQuestions(old.id, tx)).filter((question) => question.answered === undefined);
   await tx
     .update(ensembles)
     .set({
       ...counts,
-      openQuestions: questionCount,
+      openQuestions: open.length,
       acceptedSha: await acceptedSha(tx, old.id),
       version: old.version + 1,
       changedAt: new Date(),
     })
     .where(eq(ensembles.id, old.id));
+  await recomputeComputed(tx, old.id);
   await refreshChirality(tx, old.id);
   await tx.delete(ensembles).where(eq(ensembles.id, readId));
-  await writeEntry(tx, at, at, {
-    type: "reread",
-    data: { before: old.answers, after: answers, questions: questionCount, ...counts },
+  await writeDown(tx, at, plan, old, { questions: open.length, ...counts });
+}
+
+/**
+ * Reads the stored files of an ensemble again as a plan says, further batches behind the first upload, and puts what was
+ * read into the place of what was there. Access has been decided; where anything is refused nothing changes.
+ */
+export async function readAgain(at: At, plan: RereadPlan): Promise<void> {
+  const all = await findStored(at.ensembleId);
+  const [files, further] = [all.filter(({ batch }) => batch === 0), all.filter(({ batch }) => batch > 0)];
+  const before = await answersBefore(at);
+  const { energyFrom } = plan.energies;
+  const { reading, result } = await readStored(at, files, {
+    energyFrom: energyFrom === NO_ENERGY ? null : energyFrom,
+    choices: plan.answers.reading ?? {},
   });
+  try {
+    await completeReading(reading, result, {
+      answers: plan.energies,
+      kindStated: plan.kindStated,
+      written: plan.answers,
+      // The answer to a question would be for all frames alike, and batches have answers of their own.
+      mode: further.length === 0 ? plan.mode : { ...plan.mode, refuseOpen: true, confirmUnit: false },
+      sources: sourcesOf(reading, files),
+    });
+    await rereadBatches(at, reading.ensembleId, further, { before, readings: plan.batchReadings });
+    await inTransaction((tx) => adopt(tx, at, reading.ensembleId, plan));
+  } catch (error) {
+    await takeBack(reading);
+    throw error;
+  }
+  await siftAfterIntake(at);
 }
 
 /**
@@ -196,38 +306,26 @@ export async function rereadEnsemble(options: {
   kindStated: boolean;
 }): Promise<void> {
   const at = await accessEnsemble(options.actor, "take-in", options.ensembleId);
-  const { answers } = options;
-  const all = await findStored(at.ensembleId);
-  const [files, further] = [all.filter(({ batch }) => batch === 0), all.filter(({ batch }) => batch > 0)];
-  const before = await answersBefore(at);
-  // The answer to a question would be for all frames alike, and batches have answers of their own.
-  const interactive = options.actor.kind === "user" && further.length === 0;
-  const { reading, result } = await readStored(at, files, {
-    energyFrom: answers.energyFrom === "none" ? null : answers.energyFrom,
+  const { reading } = await answersBefore(at);
+  const interactive = options.actor.kind === "user";
+  await readAgain(at, {
+    answers: { ...options.answers, ...(reading ? { reading } : {}) },
+    energies: options.answers,
+    kindStated: options.kindStated,
+    mode: {
+      refuseOpen: !interactive,
+      confirmUnit: interactive,
+      knownLevels: interactive ? await levelsInUse(at.teamId) : [],
+    },
+    batchReadings: new Map(),
+    // What was answered of the reading itself holds for other energies too.
+    keeps: (id) => readAskId(id) !== null,
+    answered: [],
   });
-  try {
-    const done = await completeReading(reading, result, {
-      answers,
-      kindStated: options.kindStated,
-      written: answers,
-      mode: {
-        refuseOpen: !interactive,
-        confirmUnit: interactive,
-        knownLevels: interactive ? await levelsInUse(at.teamId) : [],
-      },
-      sources: sourcesOf(reading, files),
-    });
-    await rereadBatches(at, reading.ensembleId, further, before);
-    await inTransaction((tx) => adopt(tx, at, reading.ensembleId, done.questions));
-  } catch (error) {
-    await takeBack(reading);
-    throw error;
-  }
-  await siftAfterIntake(at);
 }
 
 /** The answers that the ensemble was read with until now. */
-async function answersBefore(at: At): Promise<WrittenAnswers> {
+export async function answersBefore(at: At): Promise<WrittenAnswers> {
   const rows = await db
     .select({ answers: ensembles.answers })
     .from(ensembles)

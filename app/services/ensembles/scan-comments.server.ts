@@ -4,6 +4,7 @@ import { frames } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
 import { isExtended } from "../../lib/intake/extended-comment.ts";
+import { withDecimalPoints } from "../../lib/intake/reading-choices.ts";
 import type { SdfFields } from "../../lib/sdf/frame.ts";
 
 /** Rows read at once: many short ones, or as many of the longest as fit. */
@@ -35,13 +36,15 @@ export interface ScannedComments {
  * Looks through the stored comment lines and data fields again, once it is known which number is meant.
  *
  * @param files those of the frames
+ * @param options.decimalCommas numbers of the files have them
  */
 export async function scanComments(
   ensembleId: string,
   files: readonly ScannedFile[],
   energyFrom: string | null,
-  on: Queryable = db,
+  options: { decimalCommas: boolean; on?: Queryable },
 ): Promise<ScannedComments> {
+  const { decimalCommas, on = db } = options;
   const scan = new EnergyScan({ from: energyFrom, maxColumns: env().MAX_COLUMNS });
   const byPosition = new Map(files.map((file) => [file.position, file]));
   const limit = await rowsAtOnce(ensembleId, on);
@@ -64,7 +67,7 @@ export async function scanComments(
     for (const { comment, file, fields, ...row } of rows) {
       const from = byPosition.get(file);
       const sdf = from?.format.startsWith("SDF") ? unpackFields(fields ?? []) : undefined;
-      scan.add({ ...row, file: from?.name ?? "" }, comment, sdf);
+      scan.add({ ...row, file: from?.name ?? "" }, decimalCommas ? withDecimalPoints(comment) : comment, sdf);
       firstComment ??= comment;
       seen += 1;
       if (sdf ? sdf.size > 0 : isExtended(comment)) extended += 1;

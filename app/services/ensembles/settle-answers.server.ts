@@ -1,4 +1,4 @@
-import { and, asc, eq, isNull, ne, or } from "drizzle-orm";
+import { and, asc, eq, inArray, isNull, ne, or } from "drizzle-orm";
 import type { Transaction } from "../../db/client.server.ts";
 import {
   ensembleFiles,
@@ -15,6 +15,7 @@ import {
   NO_ENERGY,
 } from "../../lib/intake/decide-energies.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
+import { HOLD } from "../../lib/intake/reading-choices.ts";
 import type { IntakeQuestion } from "../../lib/intake/report.ts";
 import { type SettledEnergies, settleEnergies } from "../../lib/intake/settle-energies.ts";
 import type { Graph } from "../../lib/structure.ts";
@@ -92,7 +93,11 @@ async function decide(
 ): Promise<Decided> {
   const answers = answersSoFar(ensemble, asked);
   const named = answers.energyFrom === NO_ENERGY ? null : answers.energyFrom;
-  const scanned = await scanComments(ensemble.id, await scannedFiles(tx, ensemble.id), named, tx);
+  const scanned = await scanComments(ensemble.id, await scannedFiles(tx, ensemble.id), named, {
+    // Until it is answered the files are read as proposed.
+    decimalCommas: asked.some(({ id, answered }) => id === "decimal-comma" && answered !== HOLD),
+    on: tx,
+  });
   const used = await waitingOrAccepted(tx, ensemble.id);
   const accepted = (frame: number) => used.has(frame);
   const findings = scanned.scan.finish(accepted);
@@ -115,6 +120,8 @@ async function decide(
   return { decision, settled, graph };
 }
 
+const ENERGY_QUESTIONS = ["energy-from", "energy-unit", "level"];
+
 /** Writes the columns and releases what waited; returns how many frames that were. */
 async function writeSettled(
   tx: Transaction,
@@ -124,9 +131,19 @@ async function writeSettled(
 ): Promise<number> {
   const { id } = ensemble;
   // A question that became pointless, such as the level of what is no energy, goes.
-  await tx.delete(questionTable).where(and(eq(questionTable.ensembleId, id), isNull(questionTable.answered)));
+  await tx
+    .delete(questionTable)
+    .where(
+      and(
+        eq(questionTable.ensembleId, id),
+        isNull(questionTable.answered),
+        inArray(questionTable.id, ENERGY_QUESTIONS),
+      ),
+    );
   await insertColumns(tx, id, settled.columns);
-  const released = await releaseAnswered(tx, id);
+  // What the reading itself leaves open is answered by reading again, which releases all.
+  const waits = (await findQuestions(id, tx)).some((one) => one.answered === undefined && one.id !== "group");
+  const released = waits ? 0 : await releaseAnswered(tx, id);
   await remarkFrames(tx, id, settled.messages);
   await tx
     .delete(intakeMessages)

@@ -6,17 +6,17 @@ import { log } from "../log.server.ts";
 import { askForSift } from "../sifts/create-sift.server.ts";
 
 /**
- * Asks for the first sift once nothing is open: the defaults at the first level, or file order without energies. A
+ * Asks for the first sift once frames are accepted, whatever is still open of others: the defaults at the first level, or file order without energies. A
  * failure here never fails the intake.
  */
 export async function siftAfterIntake(at: Grant & { ensembleId: string }): Promise<void> {
   try {
     const rows = await db
-      .select({ accepted: ensembles.accepted, openQuestions: ensembles.openQuestions })
+      .select({ accepted: ensembles.accepted })
       .from(ensembles)
       .where(and(eq(ensembles.id, at.ensembleId), isNull(ensembles.deletedAt)));
     const ensemble = rows[0];
-    if (ensemble === undefined || ensemble.openQuestions > 0 || ensemble.accepted === 0) return;
+    if (ensemble === undefined || ensemble.accepted === 0) return;
     const levels = await db
       .select({ id: columns.id })
       .from(columns)
