@@ -12,7 +12,7 @@ const HEAD = { distance: "d", angle: "angle", torsion: "torsion", coupling: "3J"
 export function observableName(observable: Observable, elements: ArrayLike<number>): string {
   const atoms = (observable.tuples[0] ?? []).map((atom) => atomName(elements, atom)).join("\u2013");
   const count = observable.tuples.length;
-  const merged = count > 1 ? `, mean of ${count}` : "";
+  const merged = count > 1 ? ` (mean of ${count})` : "";
   return `${HEAD[observable.kind]} ${atoms}${merged}`;
 }
 
