@@ -82,7 +82,9 @@ describe("objects of another team look like objects that are not there", () => {
   it.each(PATTERNS)("at %s, for a member of another team", async (pattern) => {
     const who = pattern.startsWith("/api/") ? { token: people.outsiderToken } : { cookie: people.outsider };
     expect(await same(pattern, "GET", who)).toBe(
-      /\/api\/.*(answers|reread|release|hold|sifts|files)$|^\/files\/.*\/(sifts|files)$/.test(pattern)
+      /\/api\/.*(answers|reread|release|hold|sifts|files)$|^\/files\/.*\/(sifts|files|pair-matrix)$/.test(
+        pattern,
+      )
         ? 405
         : 404,
     );

@@ -221,7 +221,8 @@ describe("a structure from outside", () => {
     const answer = await send("ligand.sdf", sdf.join("\n"));
     expect([answer.status, await answer.text()]).toEqual([200, expect.stringContaining("ligand.sdf")]);
     const [found] = (await list()).slice(-1);
-    expect(found?.data).toMatchObject({ atoms: "heavy", energy: null });
+    expect(found?.data.energy).toBeNull();
+    expect(found?.data.map.filter((atom) => atom >= 0)).toHaveLength(4);
     expect(found?.data.remarks.join()).toContain("no hydrogens");
   });
 
