@@ -12,6 +12,7 @@ import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.serve
 import { freeze, makeSifted, personOf } from "../factories/editions";
 import { makeMember, tokenOf } from "../factories/people";
 import { makeLab, sifted, withJobs } from "../factories/upload";
+import { call } from "../setup/app";
 
 let runner: Awaited<ReturnType<typeof withJobs>>;
 let lab: Awaited<ReturnType<typeof makeLab>>;
@@ -179,6 +180,43 @@ describe("recompute and verify", () => {
     const named = answer.files.filter(({ was, is }) => was !== is && is !== null);
     expect(named.map(({ name }) => name)).toEqual(["column MMFF94"]);
     expect(answer.files.filter(({ is }) => is === null)).toHaveLength(8);
+  });
+});
+
+describe("what an ensemble holds beside populations", () => {
+  it("goes into the edition as sections: averages by their rules, the comparison of levels, the search", async () => {
+    const frames = Array.from({ length: 60 }, (_, k) => k + 1);
+    const table = [
+      "frame,dipole [D],better [kcal/mol]",
+      ...frames.map((frame) => `${frame},${(frame % 7) / 2},${frame / 10}`),
+    ].join("\n");
+    const form = new FormData();
+    form.append("file", new Blob([table]), "table.csv");
+    const sent = await call(`/api/v1/ensembles/${at.ensembleId}/columns`, {
+      method: "POST",
+      token: lab.token,
+      body: form,
+    });
+    expect(sent.status, await sent.clone().text()).toBe(201);
+    const made = await freeze(actor(), at);
+    const content = JSON.parse((await rowOf(made.id)).content);
+    expect(content.averages).toMatchObject([{ property: "dipole", unit: "D", rule: "linear" }]);
+    expect(content.comparisons).toMatchObject([{ reference: "better" }]);
+    expect(content.comparisons[0].n).toBeGreaterThan(3);
+    expect(content.sampling.coverage).toBeGreaterThan(0);
+    expect(content.words.methods).toContain("1 property was averaged");
+    expect(content.words.methods).toContain("MMFF94 was compared with better");
+    const csv = (await bytesOf(made.id, "averages.csv")).toString("utf8");
+    const own = await call(`/api/v1/sifts/${at.siftId}/averages.csv`, { token: lab.token });
+    expect(csv).toBe(await own.text());
+    // A name and a rule that are set later do not touch what was frozen.
+    await db
+      .update(columns)
+      .set({ rule: "rms", name: "mu" })
+      .where(and(eq(columns.ensembleId, at.ensembleId), eq(columns.name, "dipole")));
+    const answer = await verifyEdition({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
+    expect(answer.files.filter(({ was, is }) => was !== is)).toEqual([]);
+    expect(answer.files).toHaveLength(9);
   });
 });
 

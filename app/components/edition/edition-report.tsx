@@ -14,6 +14,7 @@ import { byPopulation, outsideWindow } from "~/lib/workbench/conformers";
 import { cumulativePopulation } from "~/lib/workbench/cumulative";
 import { energyLadder } from "~/lib/workbench/ladder";
 import type { EditionAddresses } from "./addresses";
+import { AveragesTable } from "./averages-table";
 import { Edition3D } from "./edition-3d";
 import { EditionDownloads } from "./edition-downloads";
 import { EditionHead } from "./edition-head";
@@ -43,6 +44,7 @@ export function EditionReport({
         <HowSure edition={edition} />
       </div>
       <Plots edition={edition} />
+      <AveragesTable edition={edition} />
       <div className="mt-10 grid gap-x-12 gap-y-10 lg:grid-cols-2 print:grid-cols-1">
         <Method edition={edition} />
         <EditionDownloads edition={edition} addresses={addresses} />

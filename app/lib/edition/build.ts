@@ -1,13 +1,18 @@
+import type { PropertyValues } from "../averages/property-set.ts";
+import { RULE_WORDS } from "../averages/rule.ts";
 import { CAUTION } from "../export/json.ts";
+import { plural } from "../format.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { distinctPopulations } from "../thermo/populations.ts";
 import { CONSTANTS_YEAR } from "../units.ts";
+import { joinWords } from "../workbench/findings.ts";
 import type { EditionContent, EditionPopulations } from "./content.ts";
 import { shapeExtent } from "./extent.ts";
 import { editionFindings } from "./findings.ts";
 import { methodsText } from "./methods-text.ts";
 import { editionRows } from "./rows.ts";
+import { averagesSection, comparisonSections, samplingSection } from "./sections.ts";
 import { editionSummary } from "./summary.ts";
 
 /** Everything that an edition is built from; the same source gives the same content. */
@@ -25,6 +30,8 @@ export interface EditionSource {
   temperature: number;
   weights: "auto" | "copies" | "degeneracy";
   columns: EditionContent["columns"];
+  /** Property columns with the values of equivalent atoms merged. */
+  properties: readonly PropertyValues[];
   version: string;
 }
 
@@ -36,6 +43,7 @@ export interface EditionSource {
 export function buildContent(source: EditionSource): EditionContent {
   const { level: _level, ...recipe } = source.recipe;
   const { result } = source;
+  const populations = populationsOf(source);
   const facts = {
     schema: "lowlying-edition" as const,
     version: 1 as const,
@@ -60,8 +68,11 @@ export function buildContent(source: EditionSource): EditionContent {
     outsideWindow: result.outsideWindow,
     withoutEnergy: result.withoutEnergy,
     pairsExamined: result.pairsExamined,
-    populations: populationsOf(source),
+    populations,
     columns: source.columns,
+    averages: averagesSection(source.properties, result.kept, source.recipe, populations),
+    comparisons: comparisonSections(source.columns, source.recipe.levelName, populations),
+    sampling: samplingSection(result.kept),
   };
   const rows = editionRows(facts);
   return {
@@ -140,7 +151,27 @@ function methodsOf(facts: Omit<EditionContent, "words" | "findings">, version: s
     upperBounds: bounded,
     level: facts.level,
     populations,
+    further: furtherSentences(facts),
     version,
   });
   return [text, ...assumptions.map((assumption) => `Assumed: ${assumption}`)].join("\n");
+}
+
+/** Sentences of the methods text on what the edition holds beside populations. */
+function furtherSentences({
+  averages,
+  comparisons,
+  level,
+}: Pick<EditionContent, "averages" | "comparisons" | "level">) {
+  const rules = [...new Set((averages ?? []).map(({ rule }) => RULE_WORDS[rule].name))];
+  return [
+    averages === null
+      ? null
+      : `${plural(averages.length, "property was", "properties were")} averaged over the conformers with these populations ` +
+        `(${rules.length === 1 ? "rule" : "rules"}: ${joinWords(rules)}); what covers less than 90 % of the population is not averaged.`,
+    comparisons.length === 0
+      ? null
+      : `${level?.name ?? "The level"} was compared with ${joinWords(comparisons.map(({ reference }) => reference))} ` +
+        "on the conformers that have both energies, after a least-squares offset.",
+  ].filter((sentence) => sentence !== null);
 }

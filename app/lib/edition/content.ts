@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { AVERAGE_RULES } from "../averages/rule.ts";
 import { siftRecipeSchema } from "../recipe/recipe.ts";
 
 /**
@@ -58,6 +59,39 @@ const columnSchema = z.object({
   /** In the order of `kept`; null where missing. */
   values: z.array(finite.nullable()),
   sha256,
+});
+
+/** One property over the distinct set, as `averages.csv` has it. */
+const averageSchema = z.object({
+  property: z.string(),
+  unit: z.string().nullable(),
+  rule: z.enum(AVERAGE_RULES),
+  average: finite.nullable(),
+  spread: finite.nullable(),
+  covered: finite,
+});
+
+/** The level of the sift against another one, on the conformers that have both energies. */
+const comparisonSchema = z.object({
+  reference: z.string(),
+  n: z.number().int(),
+  mad: finite,
+  rmsd: finite,
+  max: finite,
+  spearman: finite.nullable(),
+  populationOverlap: finite,
+  /** Narrowest windows at the level that keep 90, 95 and 99 % of the reference population. */
+  window: z.array(z.object({ share: finite, kcal: finite, count: z.number().int() })),
+});
+
+/** How complete the search is, from how often each conformer was found. */
+const samplingSchema = z.object({
+  hits: z.number().int(),
+  once: z.number().int(),
+  twice: z.number().int(),
+  coverage: finite,
+  /** Lower bound of the number of conformers. */
+  atLeast: finite,
 });
 
 /** A sentence on what limits the results; "open" is for somebody to settle. */
@@ -134,6 +168,9 @@ export const editionContentSchema = z.object({
   pairsExamined: z.number().int(),
   populations: populationsSchema.nullable(),
   columns: z.array(columnSchema),
+  averages: z.array(averageSchema).nullable().default(null),
+  comparisons: z.array(comparisonSchema).default([]),
+  sampling: samplingSchema.nullable().default(null),
   words: z.object({ summary: z.array(z.string()), methods: z.string() }),
   findings: z.array(editionFindingSchema),
 });

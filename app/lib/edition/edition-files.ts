@@ -1,3 +1,4 @@
+import { averagesCsv } from "../averages/averages-csv.ts";
 import { writeCsv } from "../export/csv.ts";
 import type { ExportSet } from "../export/export-set.ts";
 import { writeSdf } from "../export/sdf-writer.ts";
@@ -33,6 +34,14 @@ export function editionFiles(content: EditionContent, positions: Float64Array): 
     { name: "distinct-set.xyz", pieces: writeXyz(set, positionsOf) },
     { name: "distinct-set.sdf", pieces: writeSdf(set, { bonds, orders }, positionsOf, properties) },
     { name: "results.csv", pieces: writeCsv(set, columns) },
+    ...(content.averages === null
+      ? []
+      : [
+          {
+            name: "averages.csv",
+            pieces: [averagesCsv(content.averages.map((row) => ({ ...row, uncertainty: null })))],
+          },
+        ]),
     { name: "results.json", pieces: [canonicalJson(content)] },
     { name: "methods.txt", pieces: [`${content.words.methods}\n\n${content.caution}\n`] },
   ];

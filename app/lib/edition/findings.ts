@@ -2,6 +2,7 @@ import {
   capital,
   formatCount,
   formatEnergy,
+  formatPercent,
   formatTemperature,
   plural,
   pluralWord,
@@ -26,6 +27,7 @@ export function editionFindings(content: Facts, rows: readonly ConformerRow[]): 
     questions(content),
     order(content, rows),
     energies(content),
+    ...content.comparisons.map(against(content)),
     windowCut(content),
     leftOut(content),
     withoutEnergy(content),
@@ -121,17 +123,28 @@ function withoutEnergy({ withoutEnergy: frames }: Facts): EditionFinding | null 
   };
 }
 
-function sampling({ kept, dropped }: Facts): EditionFinding | null {
-  if (kept.length === 0) return null;
-  const once = kept.filter(({ found }) => found === 1).length;
-  const frames = kept.length + dropped.length;
+/** How the level stands against another one. */
+function against({ level }: Facts) {
+  return ({ reference, n, mad, populationOverlap }: Facts["comparisons"][number]): EditionFinding => ({
+    kind: "know",
+    title: `Against ${reference}.`,
+    text:
+      `${level?.name ?? "The level"} deviates by ${withUnit(formatEnergy(mad), "kcal/mol")} on average ` +
+      `(${plural(n, "conformer")}); ${shareWords(populationOverlap)} of the population is shared.`,
+  });
+}
+
+/** Good-Turing coverage and the Chao1 lower bound: the search's own chances, not populations. */
+function sampling({ kept, dropped, sampling: found }: Facts): EditionFinding | null {
+  if (kept.length === 0 || found === null) return null;
+  const frames = plural(kept.length + dropped.length, "frame");
+  const more = Math.max(kept.length, Math.round(found.atLeast));
   return {
     kind: "know",
     title: "Sampling.",
     text:
-      once === 0
-        ? `Each of the ${formatCount(kept.length)} shapes was found at least twice in ${plural(frames, "frame")}.`
-        : `${capital(pluralWord(once, "shape"))} of ${formatCount(kept.length)} ${once === 1 ? "was" : "were"} found only once in ${plural(frames, "frame")}: a longer search may find more.`,
+      `Coverage of the search ${formatPercent(found.coverage)}: ${found.once === 0 ? "no shape" : pluralWord(found.once, "shape")} of ` +
+      `${formatCount(kept.length)} ${found.once <= 1 ? "was" : "were"} found only once in ${frames}; at least ${formatCount(more)} exist.`,
   };
 }
 

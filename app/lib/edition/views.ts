@@ -92,6 +92,7 @@ export interface EditionView {
   methods: string[];
   caution: string;
   findings: EditionFinding[];
+  averages: EditionContent["averages"];
   rows: ConformerRow[];
   /** Conformers in all; `rows` holds the lowest of them. */
   conformers: number;

@@ -73,6 +73,7 @@ export async function draftEdition(options: {
       values: [],
       sha256: sha?.toString("hex") ?? NOTHING,
     })),
+    properties: [],
     version: productVersion(EDITION_CODE_VERSION),
   });
 }

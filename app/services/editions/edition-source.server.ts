@@ -8,6 +8,7 @@ import type { EditionContent, EditionInputs, EditionRecipe } from "../../lib/edi
 import type { SiftResult } from "../../lib/recipe/result.ts";
 import { bondOrders } from "../../lib/sdf/orders.ts";
 import type { Graph } from "../../lib/structure.ts";
+import { propertyValues } from "../averages/property-set.server.ts";
 import { findFiles } from "../ensembles/load-ensemble.server.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
 import { unpackMolecule } from "../ensembles/molecule.server.ts";
@@ -78,6 +79,28 @@ function valuesOf(column: ColumnRow, frameCount: number, kept: SiftResult["kept"
 }
 
 const shaOf = (data: Uint8Array) => createHash("sha256").update(data).digest("hex");
+
+/** Names, units and rules as they were frozen; only the numbers are read again. */
+function asFrozen(columns: ColumnRow[], frozen: EditionContent | null): ColumnRow[] {
+  if (frozen === null) return columns;
+  return columns.map((column, k) => {
+    const { name, kind, unit, rule } = frozen.columns[k] ?? column;
+    const level = kind === "energy" && name === frozen.level?.name ? frozen.level : null;
+    return {
+      ...column,
+      name,
+      kind,
+      unit,
+      rule,
+      ...(level && {
+        energyKind: level.energyKind,
+        temperature: level.temperature,
+        kindStated: level.kindStated,
+        ordinal: level.ordinal,
+      }),
+    };
+  });
+}
 
 function contentColumn(column: ColumnRow, frameCount: number, kept: SiftResult["kept"]) {
   const { name, kind, unit, rule } = column;
@@ -155,6 +178,8 @@ export async function collectEdition(options: {
   result: Omit<SiftResult, "seconds">;
   files: EditionContent["inputs"]["files"];
   version: string;
+  /** What was frozen, where it is computed again. */
+  frozen: EditionContent | null;
 }): Promise<CollectedEdition> {
   const { ensemble, described, team, recipe, result, files, version } = options;
   const graph = unpackMolecule(ensemble);
@@ -164,7 +189,12 @@ export async function collectEdition(options: {
   const framesSha256 = await hashFrames(ensemble.id, graph, numbers, numbers.map(indexOf));
   const kept = result.kept.map(({ frame }) => frame);
   const positions = await loadPositions(ensemble.id, ensemble.atoms, kept.map(indexOf));
-  const shown = await columnRows(ensemble.id, recipe.columns);
+  const shown = asFrozen(await columnRows(ensemble.id, recipe.columns), options.frozen);
+  const properties = await propertyValues(
+    ensemble,
+    result.kept,
+    shown.filter(({ kind }) => kind === "property"),
+  );
   const contentColumns = shown.map((column) => contentColumn(column, ensemble.frames, result.kept));
   const level = shown.find(({ id }) => id === recipe.recipe.level);
   return {
@@ -196,6 +226,7 @@ export async function collectEdition(options: {
       temperature: recipe.temperature,
       weights: recipe.weights,
       columns: contentColumns,
+      properties,
       version,
     },
   };

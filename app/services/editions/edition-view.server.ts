@@ -79,6 +79,7 @@ export async function toEditionView(
     methods: content.words.methods.split("\n"),
     caution: content.caution,
     findings: content.findings,
+    averages: content.averages,
     rows: editionRows(content).slice(0, MOST_ROWS),
     conformers: content.kept.length,
     extents: content.kept.slice(0, MOST_ROWS).map(({ extent }) => extent),

@@ -150,6 +150,7 @@ async function prepare(at: At, request: FreezeRequest): Promise<Prepared> {
     result,
     files: await editionSources(ensemble.id),
     version: productVersion(EDITION_CODE_VERSION),
+    frozen: null,
   });
   const content = buildContent(collected.source);
   const files: PackedFile[] = [];

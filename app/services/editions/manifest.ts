@@ -46,6 +46,12 @@ export function manifestFile(input: ManifestInput, files: readonly EditionFile[]
         temperature: content.populations.temperature,
         weights: content.populations.weights,
       },
+      averages: content.averages?.map(({ property, rule }) => ({ property, rule })) ?? null,
+      comparisons: content.comparisons.map(({ reference }) => ({
+        reference,
+        align: "least-squares",
+        temperature: content.populations?.temperature ?? null,
+      })),
     },
     inputs: {
       files: content.inputs.files,

@@ -125,7 +125,9 @@ async function siftAgain({ edition, ensemble, recipe }: Frozen): Promise<Omit<Si
       atoms: ensemble.atoms,
       positions: await loadPositions(ensemble.id, ensemble.atoms, indices),
       numbers,
-      energies: level ? energiesOf(level, ensemble.frames, numbers) : null,
+      energies: level
+        ? energiesOf({ data: level.data, unit: content.level?.unit ?? level.unit }, ensemble.frames, numbers)
+        : null,
       recipe: recipe.recipe,
       cancel: new Int32Array(new SharedArrayBuffer(4)),
     },
@@ -162,6 +164,7 @@ async function compareFiles(frozen: Frozen, result: Omit<SiftResult, "seconds">)
     result,
     files: edition.content.inputs.files,
     version: edition.version,
+    frozen: edition.content,
   });
   const content = buildContent(collected.source);
   const made = [];
