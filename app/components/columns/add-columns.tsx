@@ -154,7 +154,8 @@ function EnergyFacts({ added }: { added: AddedFile }) {
 }
 
 function Messages({ preview }: { preview: ColumnsPreview }) {
-  const { messages } = preview;
+  // Frames without a row are counted above: a line each would hide everything else.
+  const messages = preview.messages.filter(({ code, frame }) => code !== "C07" || frame === undefined);
   if (messages.length === 0) return null;
   const more = messages.length - SHOWN_MESSAGES;
   return (

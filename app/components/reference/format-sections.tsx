@@ -19,6 +19,7 @@ export function formatSections(limits: FormatLimits): ReferenceSection[] {
     { id: "files", title: "Files and limits", body: <Files limits={limits} /> },
     { id: "xyz", title: "XYZ and extended XYZ", body: <Xyz /> },
     { id: "energies", title: "Energies", body: <Energies /> },
+    { id: "tables", title: "Tables and second files", body: <Tables /> },
     { id: "held", title: "What is held, and why", body: <Held /> },
     { id: "rejected", title: "What is rejected", body: <Rejected limits={limits} /> },
     { id: "programs", title: "From a program", body: <Programs limits={limits} /> },
@@ -93,6 +94,46 @@ const REMARK = { tone: "remark", does: "remark" } as const;
 const HELD = { tone: "held", does: "held" } as const;
 const ASKED = { tone: "ask", does: "asked" } as const;
 const REJECTED = { tone: "danger", does: "rejected" } as const;
+
+function Tables() {
+  return (
+    <>
+      <p>
+        Further energies and properties of the frames of an ensemble: a table whose first column is{" "}
+        <code>frame</code> (numbers from 1) or <code>label</code>, and every further one a quantity with its
+        unit as <code>name [unit]</code>; or a structure file with the same frames, in the same or another
+        order. An energy becomes a level of its header&rsquo;s name; frames of a structure file are matched by
+        equal coordinates, then by their nearest shape, and what has no partner is listed.
+      </p>
+      <Rules
+        label="Tables"
+        rows={[
+          { input: "Comma, semicolon, tab or bar; quotes, line breaks in cells", ...ACCEPTED },
+          { input: "Empty, NA, N/A, nan, null, - or .", note: "missing, never 0", ...ACCEPTED },
+          {
+            input: "Decimal commas, marks between thousands",
+            note: "0,435 is never read as 0 or 435",
+            ...ASKED,
+          },
+          { input: "Frames counted from 0, labels that differ in case or blanks", ...ASKED },
+          { input: "No names in the first row", ...ASKED },
+          { input: "Energies without a unit", ...ASKED },
+          { input: "Text in a column of numbers, rows of no frame, frames without a row", ...REMARK },
+          { input: "Rows that are too short or too long", note: "the row is not taken", ...HELD },
+          {
+            input: "The same key on two rows, decimal commas between commas, a quote never closed",
+            ...REJECTED,
+          },
+          {
+            input: "Headers of atoms, such as C1, H12 or shift_7",
+            note: "bound to the atom of that number; another element, or a number out of range, is rejected",
+            ...ACCEPTED,
+          },
+        ]}
+      />
+    </>
+  );
+}
 
 function Xyz() {
   return (

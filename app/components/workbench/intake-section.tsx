@@ -1,5 +1,5 @@
 import { useEffect, useRef } from "react";
-import { href } from "react-router";
+import { href, useLocation } from "react-router";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { KeyFigure, KeyFigures } from "~/components/ui/key-figures";
 import { Note } from "~/components/ui/note";
@@ -15,6 +15,7 @@ import { useWorkbench } from "./workbench-context";
 /** What was read, and what became of every frame. */
 export function IntakeSection({ intake }: { intake: IntakeView }) {
   const { ensemble } = useWorkbench();
+  const { search } = useLocation();
   const finding = intakeFinding(ensemble, intake.waiting);
   const asks = ensemble.openQuestions > 0;
   const said = useRef<HTMLDivElement>(null);
@@ -61,6 +62,15 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
         <RemarkedList frames={intake.remarked} />
       </div>
       <FileMessages messages={intake.messages} files={ensemble.files} />
+      <section className="mt-9 print:hidden">
+        <h3 className="text-sm font-semibold">Levels and tables</h3>
+        <p className="mt-1 max-w-read text-ink-2">
+          Further energies and properties of these frames come from a table or a second structure file.{" "}
+          <TextLink to={{ pathname: href("/ensembles/:id/columns", { id: ensemble.id }), search }}>
+            {ensemble.mayCompute ? "Add a level or a property table" : "See all columns"}
+          </TextLink>
+        </p>
+      </section>
       <Answered intake={intake} />
       {ensemble.chiralityNote ? (
         <Note className="mt-9">

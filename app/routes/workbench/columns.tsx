@@ -3,6 +3,7 @@ import { ColumnsSection } from "~/components/columns/columns-section";
 import type { ActAnswer } from "~/components/workbench/act-answer";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
+import { DomainError } from "~/lib/errors";
 import type { Actor } from "~/services/auth/access.server";
 import { changeColumn, columnChangeSchema } from "~/services/columns/change-column.server";
 import { checkFormula, deriveColumn, deriveSchema } from "~/services/columns/derive-column.server";
@@ -64,8 +65,14 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
     }
     case "check": {
       const expression = text("expression");
-      const formula = await checkFormula({ actor, ensembleId, expression });
-      return { ok: true, expression, formula };
+      try {
+        const formula = await checkFormula({ actor, ensembleId, expression });
+        return { ok: true, expression, formula };
+      } catch (error) {
+        // Half a formula is no failure while somebody writes it.
+        if (!(error instanceof DomainError) || error.code !== "invalid") throw error;
+        return { ok: false, expression, message: error.message };
+      }
     }
     case "derive": {
       const request = deriveSchema.safeParse({

@@ -121,7 +121,8 @@ export async function deriveColumn(options: {
     const formula = await formulaFor(tx, at.ensembleId, request.expression);
     const rows = await tx.select(facts).from(columns).where(eq(columns.ensembleId, at.ensembleId));
     const same = rows.find(({ name }) => name === request.name);
-    if (same !== undefined) await refuseCircle(tx, at.ensembleId, same.id, formula);
+    if (same !== undefined && request.replace === true)
+      await refuseCircle(tx, at.ensembleId, same.id, formula);
     const data = await computeNow(tx, at.ensembleId, formula, frames);
     const count = data.present.reduce((sum, flag) => sum + flag, 0);
     if (count === 0) {
