@@ -58,7 +58,7 @@ test("a contact and a torsion picked on the structure are averaged by their rule
   await expect(torsion).toContainText("fixed");
 
   await test.step("another rule gives another figure, and is kept", async () => {
-    await page.getByRole("button", { name: "d H16–H26 (mean of 6)" }).click();
+    await page.getByRole("button", { name: "d H16–H26 (mean of 6)", exact: true }).click();
     await page.getByText("linear", { exact: true }).last().click();
     await page.getByRole("button", { name: "Average by linear" }).click();
     await expect(row(page, /^d H16–H26 \(mean of 6\)/)).toContainText("6.3");

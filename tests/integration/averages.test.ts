@@ -4,13 +4,20 @@ import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db, inTransaction } from "~/db/client.server";
 import { columns } from "~/db/schema.server";
 import type { EnsembleAnswer } from "~/lib/api/schemas";
+import { averageOf } from "~/lib/averages/average";
+import { averageErrorsOf, propertyMoments } from "~/lib/averages/property-set";
+import { DEFAULT_SEED } from "~/lib/averages/uncertainty";
 import { angle, distance, torsion } from "~/lib/measure/geometry";
+import { distinctPopulations } from "~/lib/thermo/populations";
 import type { SiftView } from "~/lib/views";
 import type { Actor } from "~/services/auth/access.server";
+import { loadAverages } from "~/services/averages/load-averages.server";
+import { loadTrust } from "~/services/averages/load-trust.server";
 import { addObservable, observableRequestSchema } from "~/services/averages/observe.server";
 import { recomputeObservables } from "~/services/averages/recompute-observables.server";
 import { setRule } from "~/services/averages/set-rule.server";
 import { lockEnsemble, storeColumn } from "~/services/columns/store-column.server";
+import { makeMember } from "../factories/people";
 import { fixtures, readReference } from "../factories/reference";
 import { makeLab, reference, sifted, takenIn, withJobs } from "../factories/upload";
 import { call } from "../setup/app";
@@ -72,17 +79,20 @@ async function store(
   });
 }
 
+/** Cells of a line after RFC 4180; no name here holds a line end. */
+const cellsOf = (line: string) =>
+  [...line.matchAll(/(?:^|,)(?:"((?:[^"]|"")*)"|([^,]*))/g)].map(([, quoted, plain]) =>
+    quoted === undefined ? (plain ?? "") : quoted.replaceAll('""', '"'),
+  );
+
 async function csv(query = ""): Promise<Map<string, Record<string, string>>> {
   const answer = await call(`/api/v1/sifts/${sift.id}/averages.csv${query}`, { token: lab.token });
   expect(answer.status).toBe(200);
   expect(answer.headers.get("content-type")).toBe("text/csv; charset=utf-8");
-  const [head, ...lines] = (await answer.text()).trimEnd().split("\r\n");
-  expect(head).toBe("property,unit,rule,average,spread,uncertainty,covered");
+  const [head = [], ...lines] = (await answer.text()).trimEnd().split("\r\n").map(cellsOf);
+  expect(head.join()).toBe("property,unit,rule,average,spread,uncertainty,covered");
   return new Map(
-    lines.map((line) => {
-      const cells = line.split(",");
-      return [cells[0] ?? "", Object.fromEntries(head!.split(",").map((name, k) => [name, cells[k] ?? ""]))];
-    }),
+    lines.map((cells) => [cells[0] ?? "", Object.fromEntries(head.map((name, k) => [name, cells[k] ?? ""]))]),
   );
 }
 
@@ -239,5 +249,71 @@ describe("observables picked on the structure", () => {
         request: observableRequestSchema.parse({ observable: "distance", atoms: [1, 2] }),
       }),
     ).rejects.toMatchObject({ code: "not-found" });
+  });
+});
+
+describe("what the pages show", () => {
+  it("hands values over the conformers to the page, equivalent atoms merged, which then averages as the file does", async () => {
+    const view = await loadAverages({ actor: analyst, ensembleId: ensemble.id, siftId: sift.id });
+    const kept = sift.result!.kept;
+    expect(view.total).toBe(view.properties.length);
+    expect(view.properties.every(({ values }) => values.length === kept.length)).toBe(true);
+    const shift = view.properties.filter(({ quantity }) => quantity === "shift");
+    expect(shift).toHaveLength(3);
+    expect(shift[0]!.atoms).toHaveLength(3);
+    expect(new Set(shift.flatMap(({ values }) => values))).toEqual(new Set([2]));
+    // The browser's figures are the file's, digit by digit.
+    const rows = await csv("?temperature=310&sigma=0.5");
+    const weighed = distinctPopulations(kept, "electronic", 310)!;
+    const moments = view.properties.map((property) => propertyMoments(property, kept, false));
+    const { errors } = averageErrorsOf(
+      moments,
+      {
+        energies: kept.map((conformer) => conformer.relativeEnergy!),
+        weights: weighed.weights.values,
+        temperatureK: 310,
+      },
+      { sigma: 0.5, seed: DEFAULT_SEED },
+    );
+    for (const [k, property] of view.properties.entries()) {
+      const average = averageOf(moments[k]!, weighed.populations);
+      const row = rows.get(property.name)!;
+      expect(row.average).toBe(average.value === null ? "" : String(average.value));
+      expect(row.uncertainty).toBe(average.value === null ? "" : String(errors[k]!.sd));
+    }
+  });
+
+  it("says which frames each search brought", async () => {
+    const { searches } = await loadTrust({ actor: analyst, ensembleId: ensemble.id });
+    expect(searches).toEqual([{ name: `${NAME}.xyz`, ranges: [[1, 300]] }]);
+  });
+
+  it("reads without script: the finding, the table, and what is yours to settle", async () => {
+    const page = async (section: string) => {
+      const answer = await call(`/ensembles/${ensemble.id}/${section}?sift=${sift.id}`, {
+        cookie: lab.analyst.cookie,
+      });
+      expect(answer.status).toBe(200);
+      return answer.text();
+    };
+    const averages = await page("averages");
+    expect(averages).toContain("radius_of_gyration_A");
+    expect(averages).toContain("of the shapes");
+    const trust = await page("trust");
+    expect(trust).toContain("yours to settle");
+    expect(trust).toContain("nothing to do");
+    expect(await page("populations")).toContain("Shape by torsion");
+  });
+
+  it("refuses an act of a reader and of a form that does not fit, in words", async () => {
+    const reader = await makeMember(lab.team.id, "reader");
+    const send = (cookie: string, form: Record<string, string>) =>
+      call(`/ensembles/${ensemble.id}/averages`, { cookie, form });
+    const refused = await send(reader.cookie, { intent: "observe", observable: "distance", atoms: "1,2" });
+    expect(await refused.text()).toContain("analyst or owner");
+    const wrong = await send(lab.analyst.cookie, { intent: "observe", observable: "distance", atoms: "1,x" });
+    expect(wrong.status).toBe(400);
+    const unknown = await send(lab.analyst.cookie, { intent: "rule", column: "a".repeat(16), rule: "r-6" });
+    expect(unknown.status).toBe(404);
   });
 });
