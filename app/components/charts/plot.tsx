@@ -244,8 +244,13 @@ export function ChartText({
   );
 }
 
-/** Width of a letter of 12 px: how far left of a title that ends at the right its marker stands. */
-const LETTER = 6.8;
+/** About how wide a text of 12 px is: how far left of a title that ends at the right its marker stands. */
+function textWidth(text: string): number {
+  let width = 0;
+  for (const letter of text)
+    width += /[ .,:;'()|/ijltfr]/.test(letter) ? 4.2 : /[A-Z0-9%mw]/.test(letter) ? 7.9 : 6.6;
+  return width;
+}
 
 function AxisTitles({ x, y, height }: { x: Axis; y: Axis; height: number }) {
   const plot = usePlot();
@@ -259,7 +264,7 @@ function AxisTitles({ x, y, height }: { x: Axis; y: Axis; height: number }) {
       {x.ordinal ? (
         <LevelGlyph
           ordinal={x.ordinal}
-          x={Math.max(0, plot.right - LETTER * x.title.length - 20)}
+          x={Math.max(0, plot.right - textWidth(x.title) - 18)}
           y={height - 12}
         />
       ) : null}

@@ -50,6 +50,7 @@ export function LevelAgainstLevel({
       note={[
         `Line: equal energies, ${ZERO_WORDS[comparison.align]} of ${formatEnergy(offset)} taken off.`,
         comparison.sd === null ? null : `Band: ± ${formatEnergy(comparison.sd)}, one standard deviation.`,
+        farthest ? `Farthest off: ${farthest.name}, ${formatEnergy(comparison.max)}.` : null,
         left > 0
           ? `${plural(left, "conformer")} outside the figure, or less populated than the ${drawn.length} drawn; all stand in the table.`
           : null,
@@ -99,7 +100,7 @@ export function LevelAgainstLevel({
           named={[
             ...lowest.map((point) => ({ point, text: point.name })),
             ...(farthest && farthest.level <= top && farthest.reference <= top && points.length > 4
-              ? [{ point: farthest, text: `${farthest.name}, farthest off, ${formatEnergy(comparison.max)}` }]
+              ? [{ point: farthest, text: farthest.name }]
               : []),
           ]}
         />

@@ -89,6 +89,13 @@ function CostLayer({ placed, front }: { placed: readonly Placed[]; front: readon
       ) : null}
       {placed.map((p, k) => {
         const { x, y } = at(p);
+        // Plans that come to the same would print their names on each other: the one at hand is named, else the first.
+        const hidden = placed.some(
+          (other, o) =>
+            o !== k &&
+            Math.hypot(at(other).x - x, at(other).y - y) < 14 &&
+            (other.chosen || (o < k && !p.chosen)),
+        );
         const before = placed[k - 1];
         const from = before ? at(before) : null;
         const far = from ? Math.hypot(x - from.x, y - from.y) > 46 : false;
@@ -101,9 +108,11 @@ function CostLayer({ placed, front }: { placed: readonly Placed[]; front: readon
               fill={p.chosen ? "var(--color-mark)" : "var(--color-paper)"}
               stroke={p.chosen ? "var(--color-mark)" : "var(--color-ink)"}
             />
-            <ChartText x={x - 8} y={y - 8} end tone={p.chosen ? "mark" : "ink"} halo>
-              {p.name}, {formatHours(p.cost)}
-            </ChartText>
+            {hidden ? null : (
+              <ChartText x={x - 8} y={y - 8} end tone={p.chosen ? "mark" : "ink"} halo>
+                {p.name}, {formatHours(p.cost)}
+              </ChartText>
+            )}
             {from && far && p.each !== null ? (
               <ChartText x={(x + from.x) / 2 + 6} y={(y + from.y) / 2 + 14} halo>
                 {formatHours(p.each)}

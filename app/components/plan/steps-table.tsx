@@ -77,12 +77,12 @@ export function StepsTable({
             <Th align="right" className="max-xl:hidden">
               In
             </Th>
-            <Th>Carry from the level before</Th>
+            <Th className="max-sm:hidden">Carry</Th>
             <Th align="right">Carried</Th>
             <Th align="right" unit="core hours" className="max-sm:hidden">
               Each
             </Th>
-            <Th unit={`core hours, ${formatPercent(plan.failRate)} repeated`} className="max-sm:hidden">
+            <Th unit="core hours" className="max-sm:hidden">
               Cost
             </Th>
             <Th align="right" unit="%">
@@ -101,7 +101,7 @@ export function StepsTable({
                   <SelectField
                     label="Start"
                     hideLabel
-                    className="min-w-40"
+                    className="w-40 min-w-0 max-xl:w-34"
                     value={plan.start}
                     onChange={(event) => onChange({ ...plan, start: event.currentTarget.value })}
                     choices={levels.map(({ id, name }) => ({ value: id, label: name }))}
@@ -111,7 +111,7 @@ export function StepsTable({
               <span className="block text-xs text-ink-3">done: {plural(conformers, "conformer")}</span>
             </Td>
             <Td className="max-xl:hidden" />
-            <Td className="text-ink-3">all</Td>
+            <Td className="text-ink-3 max-sm:hidden">all</Td>
             <Td align="right">{formatCount(conformers)}</Td>
             <Td align="right" className="text-ink-3 max-sm:hidden">
               {ABSENT}
@@ -137,14 +137,15 @@ export function StepsTable({
               Together
               <span className="block text-xs text-ink-3">
                 {outcome ? `${withUnit(formatHours(outcome.wall), "hours")} of waiting on ` : "on "}
-                {plural(plan.slots, "slot")} of {plural(plan.coresPerSlot, "core")}
+                {plural(plan.slots, "slot")} of {plural(plan.coresPerSlot, "core")},{" "}
+                {formatPercent(plan.failRate)} repeated
                 <span className="sm:hidden">
                   {outcome ? `; ${withUnit(formatHours(outcome.cost), "core hours")}` : ""}
                 </span>
               </span>
             </Td>
             <Td className="max-xl:hidden" />
-            <Td />
+            <Td className="max-sm:hidden" />
             <Td />
             <Td className="max-sm:hidden" />
             <Td className="max-sm:hidden">
@@ -204,7 +205,7 @@ function StepRow({
             <SelectField
               label="Level"
               hideLabel
-              className="min-w-40"
+              className="w-40 min-w-0 max-xl:w-34"
               value={known?.id ?? ""}
               onChange={(event) => {
                 const level = levels.find((one) => one.id === event.currentTarget.value);
@@ -248,6 +249,24 @@ function StepRow({
             />
           </span>
         )}
+        <span className="mt-2 block sm:hidden">
+          <CutFields
+            cut={step.cut}
+            outcome={outcome}
+            readOnly={readOnly}
+            onChange={(cut) => onChange({ cut })}
+          />
+          <span className="mt-2 block text-xs text-ink-3">
+            <HoursDialog
+              name={step.name}
+              source={step.hours}
+              atoms={atoms}
+              readOnly={readOnly}
+              onChange={(hours) => onChange({ hours })}
+            />{" "}
+            core hours each{outcome ? `, ${formatHours(outcome.cost)} together` : ""}
+          </span>
+        </span>
       </Td>
       <Td align="right" className="max-xl:hidden">
         {outcome ? formatCount(Math.round(outcome.in.mean)) : ABSENT}
