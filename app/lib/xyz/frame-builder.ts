@@ -35,8 +35,8 @@ export interface TextLine {
 const NO_KEYS: ReadonlyMap<string, ExtendedEntry> = new Map();
 const NO_ELEMENTS = new Uint8Array(0);
 const NO_POSITIONS = new Float64Array(0);
-/** Blank, or a whole number alone: no atom line. */
-const NO_ATOM = /^[ \t]*\+?\d*[ \t]*$/;
+/** x, y and z of a line that may turn out to be no atom. */
+const position = new Float64Array(3);
 const NO_ODDITIES: ReadonlyMap<CommentOddity, string> = new Map();
 
 /**
@@ -153,9 +153,7 @@ export class FrameBuilder implements PlainTarget {
       this.read += 1;
       return true;
     }
-    if (NO_ATOM.test(line.text)) return false;
-    this.makeRoom();
-    let result = readAtomLine(line.text, this.layout, this.positions, 3 * this.read);
+    let result = readAtomLine(line.text, this.layout, position, 0);
     if (result.kind !== "atom") result = this.#readOpen(line, this.layout) ?? result;
     if (result.kind === "other") return false;
     if (result.kind === "fault") this.#note({ ...result.fault, line: line.number, atom: this.read + 1 });
@@ -166,8 +164,8 @@ export class FrameBuilder implements PlainTarget {
 
   /** The line as the choices say to read it, where it leaves something open. */
   #readOpen(line: TextLine, layout: Layout): AtomLine | null {
-    const { read, positions, choices } = this;
-    const found = readOpenLine(line.text, layout, positions, read, choices);
+    const { read, choices } = this;
+    const found = readOpenLine(line.text, layout, position, read, choices);
     if (found === null) return null;
     for (const one of found.open) {
       if (!this.open.has(one.ask)) this.open.set(one.ask, { ...one, line: line.number });
@@ -182,6 +180,8 @@ export class FrameBuilder implements PlainTarget {
 
   #put(atom: ReadAtom, line: TextLine): void {
     const k = this.read;
+    this.makeRoom();
+    this.positions.set(position, 3 * k);
     this.elements[k] = atom.z;
     this.#putName(k, atom, line.number);
     if (atom.caret) this.carets ||= line.number;

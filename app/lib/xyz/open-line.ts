@@ -25,13 +25,14 @@ const may = (choices: ReadingChoices, ask: keyof ReadingChoices, ...options: str
  * Reads an atom line that cannot be read as it stands, where the choices say how: with decimal commas (row X22), behind
  * an index (X26), with a name in capitals that has two readings (X16).
  *
+ * @param position takes x, y and z
  * @param atom number of the atom from 0, which an index must count
  * @returns null where the choices do not help
  */
 export function readOpenLine(
   line: string,
   layout: Layout,
-  positions: Float64Array,
+  position: Float64Array,
   atom: number,
   choices: ReadingChoices,
 ): OpenLine | null {
@@ -39,7 +40,7 @@ export function readOpenLine(
   let capitals: OpenLine["capitals"] = null;
   const open: Open[] = [];
   for (let step = 0; step < 4; step++) {
-    const result = readAtomLine(text, layout, positions, 3 * atom);
+    const result = readAtomLine(text, layout, position, 0);
     if (result.kind === "atom") {
       if (capitals) result.atom.label ??= capitals.token;
       return { result, open, capitals };
