@@ -62,7 +62,7 @@ const formWithFiles = (fields: typeof api.uploadFieldsSchema | typeof api.batchF
           .array(z.string().meta({ format: "binary" }))
           .min(1)
           .meta({
-            description: "XYZ, extended XYZ or SDF, plain or gzip; frames are numbered on through all files.",
+            description: "XYZ, extended XYZ or SDF, plain, gzip or in a zip archive; frames are numbered on through all files.",
           }),
       }),
     },

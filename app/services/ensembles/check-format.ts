@@ -12,8 +12,6 @@ export interface CheckedFile {
 
 /** What is recognised and no structure file; null for what its reader takes, or finds the fault of. */
 function unread(found: Sniffed): string | null {
-  if (found.container === "zip") return "a zip archive inside of another file";
-  if (found.container === "gzip") return "gzip inside of another file";
   return found.format === "csv" ? "a table" : null;
 }
 
@@ -24,6 +22,14 @@ function checkHead(
 ): CheckedFile["format"] {
   const found = sniff(head, name);
   if (found.refusal) throw new IntakeRejection({ file: name, ...found.refusal });
+  if (found.container !== "none") {
+    throw new IntakeRejection({
+      code: "G09",
+      file: name,
+      message: `The file is packed twice: inside lies ${found.container === "zip" ? "a zip archive" : "a gzip file"}.`,
+      hint: "Unpack it once and send it again.",
+    });
+  }
   const what = unread(found);
   if (what !== null || found.format === "csv") {
     throw new IntakeRejection({

@@ -51,7 +51,8 @@ export async function scanWith(reading: Reading, result: ReadResult, energyFrom:
   const named = energyFrom === "none" ? null : energyFrom;
   if (reading.options.energyFrom === named) return result;
   const { decimalCommas } = reading;
-  return scanComments(reading.ensembleId, result.files, named, { decimalCommas });
+  const files = result.files.map(({ entry, ...file }) => ({ ...file, name: entry ?? file.name }));
+  return scanComments(reading.ensembleId, files, named, { decimalCommas });
 }
 
 export interface CompletedReading {

@@ -1,4 +1,4 @@
-import { and, asc, eq } from "drizzle-orm";
+import { and, asc, eq, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { ensembleFiles, frames as frameRows } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
@@ -28,10 +28,13 @@ function open(questions: readonly IntakeQuestion[]): EnsembleAnswer["intake"]["q
     );
 }
 
+/** Of a file in an archive its own name. */
+const fileName = sql<string>`coalesce(${ensembleFiles.entry}, ${ensembleFiles.name})`;
+
 /** What people hold is said like what the readers hold, with the reason they gave; the first 100 as everywhere. */
 async function handHolds(ensembleId: string): Promise<IntakeMessage[]> {
   const rows = await db
-    .select({ frame: frameRows.number, line: frameRows.line, note: frameRows.note, file: ensembleFiles.name })
+    .select({ frame: frameRows.number, line: frameRows.line, note: frameRows.note, file: fileName })
     .from(frameRows)
     .innerJoin(
       ensembleFiles,

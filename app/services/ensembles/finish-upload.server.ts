@@ -29,7 +29,7 @@ function writtenAnswers(fields: UploadFields): WrittenAnswers {
 
 /** "run3.xyz.gz" becomes "run3"; what else stands behind dots belongs to the name. */
 function nameOfFile(name: string): string {
-  const stem = name.replace(/(\.(xyz|extxyz|txt|sdf|sd|mol))?(\.gz)?$/i, "").trim();
+  const stem = name.replace(/(\.(xyz|extxyz|txt|sdf|sd|mol))?(\.gz|\.zip)?$/i, "").trim();
   return [...(stem === "" ? name : stem)].slice(0, 200).join("");
 }
 

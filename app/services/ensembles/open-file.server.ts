@@ -8,6 +8,8 @@ import { GzipError, looksLikeGzip, unpackGzip } from "./unpack-gzip.server.ts";
 export interface OpenedFile {
   bytes: AsyncGenerator<Uint8Array, void, undefined>;
   packed: boolean;
+  /** Its first bytes as they came, four at least where it has so many. */
+  head: Uint8Array;
 }
 
 /** Refused as a whole, since one more byte would pass the limit (413). */
@@ -99,7 +101,7 @@ export async function openFile(
 ): Promise<OpenedFile> {
   const iterator = source[Symbol.asyncIterator]();
   let head: Uint8Array = new Uint8Array(0);
-  while (head.length < 2) {
+  while (head.length < 4) {
     const next = await iterator.next();
     if (next.done) break;
     head = head.length === 0 ? next.value : Buffer.concat([head, next.value]);
@@ -114,5 +116,5 @@ export async function openFile(
   };
   const packed = looksLikeGzip(head);
   const plain = packed ? unpacked(whole(), options.file, options.remark) : whole();
-  return { bytes: countBytes(plain, options.file, options.limit), packed };
+  return { bytes: countBytes(plain, options.file, options.limit), packed, head };
 }

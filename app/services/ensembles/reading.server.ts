@@ -24,15 +24,18 @@ import {
 } from "../../lib/intake/reading-choices.ts";
 import { groupQuestion, PREVIEWS, readingQuestion } from "../../lib/intake/reading-questions.ts";
 import { IntakeRejection } from "../../lib/intake/reject.ts";
-import type { IntakeQuestion } from "../../lib/intake/report.ts";
+import type { IntakeMessage, IntakeQuestion } from "../../lib/intake/report.ts";
 import { isSdfFrame } from "../../lib/sdf/frame.ts";
 import { SDF_READER_VERSION, SdfReader } from "../../lib/sdf.server.ts";
+import { escapeControls } from "../../lib/text/escape.ts";
+import { sniff } from "../../lib/text/sniff.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
 import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
 import { BlockWriter } from "./block-writer.server.ts";
 import { checkFormat } from "./check-format.ts";
 import { type FrameDecision, FrameWriter, writeDecisions } from "./frame-writer.server.ts";
-import { keptOpen, type OpenedFile, openFile, refusalOfPacked } from "./open-file.server.ts";
+import { keptOpen, type OpenedFile, openFile, refusalOfPacked, tooManyBytes } from "./open-file.server.ts";
+import { isZip, ZipArchive, type ZipEntry } from "./zip-archive.server.ts";
 
 /** Longest time that reading keeps the process from other requests. */
 const BREATH_MS = 15;
@@ -52,7 +55,10 @@ export interface ReadFile {
   position: number;
   /** Which of the kept files it is, from 0: entries of one archive share theirs. */
   source: number;
+  /** Of the file as sent. */
   name: string;
+  /** Of the file inside of it, where that is an archive. */
+  entry: string | null;
   format: string;
   firstFrame: number;
   frames: number;
@@ -94,6 +100,18 @@ export interface ReadResult {
   /** Most frames have an extended comment: its further keys are columns. */
   extended: boolean;
   atomLabels: (string | null)[] | null;
+}
+
+/** Office files are zip archives, too: their first entry gives them away. */
+function refuseOffice(file: string, head: Uint8Array): void {
+  const { refusal } = sniff(head, file);
+  if (refusal) throw new IntakeRejection({ file, ...refusal });
+}
+
+function noStructures(file: string, first: IntakeMessage | null): IntakeRejection {
+  const why = first === null ? "It is empty." : `${first.file}: ${first.message}`;
+  const message = `The archive holds no structure file. ${why}`;
+  return new IntakeRejection({ code: "G09", file, message, hint: "Pack XYZ or SDF files." });
 }
 
 function noFrames(file: string, lastLine: number): IntakeRejection {
@@ -207,8 +225,10 @@ export class Reading {
   async readFile(name: string, source: AsyncIterable<Uint8Array>): Promise<void> {
     const remark = (message: Parameters<MessageList["add"]>[0]) => this.messages.add(message);
     const file = await openFile(source, { file: name, limit: env().MAX_FILE_BYTES, remark });
+    const own = this.sources++;
     try {
-      await this.readOpened(name, file);
+      if (isZip(file.head)) await this.readArchive(name, own, file);
+      else await this.readOpened({ name, source: own, entry: null }, file);
     } catch (error) {
       if (!file.packed || !(error instanceof IntakeRejection)) throw error;
       throw await refusalOfPacked(error, file.bytes);
@@ -217,8 +237,56 @@ export class Reading {
     }
   }
 
-  private async readOpened(name: string, file: OpenedFile): Promise<void> {
-    const own = this.sources++;
+  /** Every file of a zip archive; one that cannot be read is refused by itself. */
+  private async readArchive(name: string, source: number, file: OpenedFile): Promise<void> {
+    refuseOffice(name, file.head);
+    const archive = await ZipArchive.from(keptOpen(file.bytes), name);
+    try {
+      const entries = await archive.entries();
+      const limit = env().MAX_FILE_BYTES;
+      if (entries.reduce((sum, { bytes }) => sum + bytes, 0) > limit) throw tooManyBytes(name, limit);
+      const had = this.frames;
+      let first: IntakeMessage | null = null;
+      for (const entry of entries) {
+        const refused = await this.readEntry(archive, entry, { name, source });
+        if (refused) this.messages.add(refused);
+        first ??= refused;
+      }
+      if (this.frames === had) throw noStructures(name, first);
+    } finally {
+      await archive.close();
+    }
+  }
+
+  /** @returns why the entry was refused; null where it was read */
+  private async readEntry(
+    archive: ZipArchive,
+    entry: ZipEntry,
+    of: { name: string; source: number },
+  ): Promise<IntakeMessage | null> {
+    const own = [...escapeControls(entry.name)].slice(0, 255).join("");
+    if (entry.refusal !== null) {
+      const message = `The file in the archive was not taken in: ${entry.refusal}`;
+      return { code: "G09", severity: "reject", file: own, message };
+    }
+    const had = this.frames;
+    const bytes = archive.unpack(entry);
+    try {
+      await this.readOpened({ ...of, entry: own }, { bytes, packed: false, head: new Uint8Array(0) });
+      return null;
+    } catch (error) {
+      if (!(error instanceof IntakeRejection) || this.frames > had || error.report.file !== own) throw error;
+      return error.report;
+    } finally {
+      await bytes.return(undefined);
+    }
+  }
+
+  private async readOpened(
+    of: { name: string; source: number; entry: string | null },
+    file: OpenedFile,
+  ): Promise<void> {
+    const name = of.entry ?? of.name;
     const settings = env();
     const remark = (message: Parameters<MessageList["add"]>[0]) => this.messages.add(message);
     const { format, bytes } = await checkFormat(name, keptOpen(file.bytes), remark);
@@ -251,10 +319,9 @@ export class Reading {
     this.messages.addAll(reader.messages);
     const kind = format === "sdf" ? "SDF" : "XYZ";
     this.files.push({
+      ...of,
       position,
-      source: own,
-      name,
-      format: file.packed ? `${kind}, gzip` : kind,
+      format: file.packed ? `${kind}, gzip` : of.entry === null ? kind : `${kind}, zip`,
       firstFrame: before + 1,
       frames: this.frames - had,
     });
