@@ -29,7 +29,7 @@ export function RarefactionChart({ found, coverage }: { found: readonly number[]
       <Plot
         label="Distinct conformers found against frames"
         height={300}
-        x={{ title: "frames", low: -0.01 * hits, high: 2.5 * hits, ticks: undefined }}
+        x={{ title: "frames", low: -0.01 * hits, high: 2.9 * hits, ticks: undefined }}
         y={{ title: "distinct conformers found", low: 0, high: 1.12 * top }}
         points={curve
           .filter((_, k) => k % 6 === 0)
@@ -102,7 +102,7 @@ function Layer({
       </ChartText>
       {high !== null && high > richness.estimate * 1.08 ? (
         <ChartText x={at + 10} y={plot.y(high) + 4} halo>
-          95 %: to {formatCount(Math.round(richness.high ?? high))}
+          95 %: {formatCount(Math.round(richness.high ?? high))}
         </ChartText>
       ) : null}
     </g>

@@ -49,7 +49,7 @@ export function TemperatureSweep({
         height={300}
         x={{ title: "temperature, K", low: LOW_K, high: HIGH_K + 40, ticks: [150, 200, 300, 400, 500] }}
         y={{
-          title: "share of the ensemble, %, lowest conformer at the bottom",
+          title: "share of the ensemble, %, c1 at the bottom",
           low: 0,
           high: 100,
           ticks: [0, 25, 50, 75, 100],
