@@ -1,7 +1,7 @@
 import { describe, expect, it } from "vitest";
 import { bodyLimit, clientAddress } from "./application.server.ts";
 
-describe("clientAddress", () => {
+describe("clientAddress (security G07)", () => {
   it("believes no header unless a proxy of ours stands in front", () => {
     expect(clientAddress("198.51.100.9", "6.6.6.6", 0)).toBe("198.51.100.9");
   });
@@ -25,13 +25,22 @@ describe("bodyLimit", () => {
     "/api/v1/ensembles",
     "/api/v1/ensembles/abc/files",
     "/api/v1/ensembles/abc/columns",
+    "/files/ensembles/abc/files",
+    "/files/ensembles/abc/columns",
   ])("leaves the counting to the reader of %s", (pathname) => expect(bodyLimit(pathname)).toBeNull());
+
+  it.each(["/ensembles/abc/compare", "/ensembles/abc/compare.data"])(
+    "has room for one structure at %s",
+    (pathname) => expect(bodyLimit(pathname)).toBe(9_437_184),
+  );
 
   it.each([
     "/login",
     "/",
     "/api/v1/ensembles/abc/sifts",
     "/api/v1/ensembles/abc/answers",
+    "/files/ensembles/abc/sifts",
+    "/ensembles/abc/columns",
     "/files/uploads",
     "/x/files/upload",
   ])("keeps %s small", (pathname) => expect(bodyLimit(pathname)).toBe(1_048_576));

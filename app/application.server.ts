@@ -8,11 +8,16 @@ import { shutDownJobs } from "./services/jobs/shutdown.server.ts";
 import { log } from "./services/log.server.ts";
 
 /** Calls that carry files; their own readers count the bytes. Everything else is a small form or a small JSON. */
-const UPLOADS = /^\/+(files\/upload|api\/v1\/ensembles(\/[^/]+\/(files|columns))?)\/?(\.data)?$/i;
+const UPLOADS =
+  /^\/+(files\/upload|api\/v1\/ensembles|(api\/v1|files)\/ensembles\/[^/]+\/(files|columns))\/?(\.data)?$/i;
 const SMALL_BODY_BYTES = 2 ** 20;
+/** One structure from outside and the fields beside it; read as a form, so bounded here too. */
+const OUTSIDE = /^\/+ensembles\/[^/]+\/compare\/?(\.data)?$/i;
+const OUTSIDE_BODY_BYTES = 9 * 2 ** 20;
 
 /** Most bytes that the body of a request to this address may have; null where its route counts them itself. */
 export function bodyLimit(pathname: string): number | null {
+  if (OUTSIDE.test(pathname)) return OUTSIDE_BODY_BYTES;
   return UPLOADS.test(pathname) ? null : SMALL_BODY_BYTES;
 }
 

@@ -1,5 +1,6 @@
 /**
- * Common passwords of 12 characters and more, from memory: shorter ones are refused for their length already, and
+ * Common passwords of 12 characters and more, from memory and, last, those of the 30,000 most frequent that the package
+ * zxcvbn 4.4.2 (MIT) lists; its first 3,000 hold 12. Shorter ones are refused for their length already, and
  * repeated pieces, walks over the keyboard and the product's name by rules of their own (password-rules.server.ts).
  */
 export const COMMON_PASSWORDS: ReadonlySet<string> = new Set(
@@ -38,6 +39,29 @@ thequickbrownfox thequickbrown quickbrownfox lorem ipsum dolor loremipsumdolor l
 hello1234567 hello12345678 hellohello12 goodmorning1 goodmorning123 happybirthday happynewyear merrychristmas qwert12345qwert
 chemistry123 chemistry1234 chemistry12345 laboratory12 laboratory123 laboratory1234 molecule1234 molecules123 conformer123 conformer1234
 conformation conformation1 conformations conformational ensemble1234 ensembles123 boltzmann123 boltzmann1234 periodictable
+mailcreated5240 123456qwerty polniypizdec0211 sojdlg123aljg leavemealone qazwsxedc123 ghjcnjgfhjkm sonyericsson zxcasdqwe123
+ghhh47hj7649 masterbating qwerasdfzxcv qweasdzxc123 flvbybcnhfnjh 123456789987654321 finalfantasy ghbdtnrfrltkf websolutions
+chickenwing101 justinbieber contortionist masturbation pornographic newproject2004 needforspeed businessbabe 123456789123
+masterbaiting maurolarastefy domainlock2005 momsanaladventure dkflbvbhjdbx hd764nw5d7e1vb1 dkflbvbhjdyf counterstrike
+vfvfvskfhfve fkmnthyfnbdf admin18533362 23176djivanfros 123456789qwerty qazxswedcvfr qwertyasdfgh 1111111111zz whosyourdaddy
+fktrcfylhjdyf fktrcfylhjdbx 123456789qaz 541233432442 12345678900987654321 010203040506 lost4815162342 vanyarespekt
+combat123654 devilmaycry4 iseedeadpeople 89231243658s 123456789qqq jamesbond007 4815162342lost 123123qweqwe qwertyytrewq
+1234qwerasdf 123qwe456rty ghjcnjrdfibyj saun24865709 q1w2e3r4t5y6u7 1qa2ws3ed4rf 123456789zxc polniypizdec110211 ptybnxtvgbjy
+fucktheworld 12345678987654321 mevefalkcakk playstation3 31217221027711 zqjphsyf6ctifgu 1234567890qwe hedimaptfcor
+lhbjkjubz2957704 andrewjackie networkingpe 12qw34er56ty 1qazxsw23edcvfr4 159753456852 123456782000 christopher1 ingodwetrust
+installdevic digitalprodu boy4u2ownnyc peanutbutter an83546921an13 1234567890zzz olcrackmaster auckland2010 residentevil
+qawsedrftgyh 123321qweewq 32615948worms 742617000027 nemvxyheqdd5oqxyxyzi avrillavigne fuckyoubitch massimiliano 012345678910
+41d8cd98f00b nhfdvfnjkju123 gjkysqgbpltw ticketmaster 01telemike01 p030710p$e4o stratocaster punksnotdead playstation2
+fynfyfyfhbde ghjcnjqgfhjkm nightcrawler installsqlst 123456789101 frederiksberg 1234567890qaz 1a2s3d4f5g6h sanfrancisco
+89876065093rax ghjcnjgbpltw 1234567qwertyu 1234qwerasdfzxcv lytghjgtnhjdcr schoolgirlie 111222333000 zaqwsxcderfv
+iloveboobies seemnemaailm nhecsyfujkjdt qwaszxerdfcv antananarivu greenlantern q1w2e3r4t5y6u7i8o9p0 passwordstandard
+corperfmonsy maprchem56458 warhammer40k 1234567890qwerty morganstanley 1234567890987654321 cjdthitycndj bltynbabrfwbz
+stinkyfinger qwertyuiop10 qazxswedc123 iampurehaha2 zxcvbn123456 gtnhjpfdjlcr 123321456654 59382113kevinp bpgjldsgjldthnf
+rfnthbyf1988 1qa2ws3ed4rf5tg qwertyuiop12345 nhfycajhvths msorcloledbr stickdaddy77 asdfgh123456 123456789asd specialinsta
+michaeljackson webuivalidat 1234567887654321 1234567892000 ilovemyfamily weihnachtsbau 014702580369 qaz123wsx456
+123456789qwer 111222333444555 123456789000 systemofadown vladimirovna 122333444455555 amadeusptfcor zxcvbnm123456789
+websolutionssu mortalkombat paraklast1974 minnesota_hp nondriversig 123qwerty123 a1s2d3f4g5h6 z1x2c3v4b5n6m7 ghjnbdjcnjzybt
+thecakeisalie fktrcfylhjdf ontheoutside zcfvfzkexifz sonnenschein wazzkaprivet xxxp455w0rd5 qwertasdfgzxcvb weihnachtsbaum
 `
     .trim()
     // Entries are one to a blank; the few with blanks inside are compared without them as well.
