@@ -57,6 +57,7 @@ test("a table is looked at, its questions answered, then kept", async ({ page })
   await expect(add).toBeDisabled();
   await page.getByRole("button", { name: "Use this answer" }).first().click();
   await expect(page.getByText("Numbers: comma")).toBeVisible();
+  await expect(page.getByRole("button", { name: "Use this answer" })).toHaveCount(1);
   await page.getByRole("button", { name: "Use this answer" }).click();
   await expect(page.getByText("6 of 6 rows matched by frame number.")).toBeVisible();
   await page.getByLabel("Name of cheap [kcal/mol]").fill("PM7");

@@ -368,7 +368,7 @@ describe("the comparison of two levels", () => {
       align: "least-squares",
       temperature: 298.15,
       sift: null,
-      maxFrame: 2,
+      maxFrame: 5,
     });
     const figures = [
       body.mad,

@@ -11,6 +11,7 @@ import { showToast } from "~/components/ui/toast";
 import type { ActAnswer } from "~/components/workbench/act-answer";
 import { type ColumnView, ENERGY_KIND_WORDS } from "~/lib/columns-view";
 import { formatCount, formatTemperature } from "~/lib/format";
+import { ScrollBox } from "./scroll-box";
 
 interface Props {
   ensembleId: string;
@@ -30,7 +31,7 @@ function kindWords(column: ColumnView): string {
 
 export function ColumnTable({ columns, ensembleId, mayChange }: Props & { columns: readonly ColumnView[] }) {
   return (
-    <div className="mt-5 overflow-x-auto">
+    <ScrollBox label="Columns" className="mt-5">
       <Table aria-label="Columns of the ensemble">
         <thead>
           <tr>
@@ -78,7 +79,7 @@ export function ColumnTable({ columns, ensembleId, mayChange }: Props & { column
           ))}
         </tbody>
       </Table>
-    </div>
+    </ScrollBox>
   );
 }
 

@@ -7,6 +7,7 @@ import { SelectField } from "~/components/ui/select-field";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import type { ColumnsPreview } from "~/lib/api/schemas";
 import { formatCount } from "~/lib/format";
+import { ScrollBox } from "./scroll-box";
 import type { ColumnChoiceField } from "./send-columns";
 
 type Planned = ColumnsPreview["columns"][number];
@@ -19,7 +20,7 @@ export function FirstRows({ preview }: { preview: ColumnsPreview }) {
   return (
     <section className="mt-6">
       <BlockHead title={`The first rows, separated by a ${preview.delimiter}`} />
-      <div className="overflow-x-auto">
+      <ScrollBox label="First rows">
         <Table aria-label="The first rows of the file" className="figures">
           <thead>
             <tr>
@@ -38,7 +39,7 @@ export function FirstRows({ preview }: { preview: ColumnsPreview }) {
             ))}
           </tbody>
         </Table>
-      </div>
+      </ScrollBox>
     </section>
   );
 }
@@ -58,7 +59,7 @@ export function TakenAs({
   return (
     <section className="mt-6">
       <BlockHead title="What each column is taken as" />
-      <div className="overflow-x-auto">
+      <ScrollBox label="Columns of the file">
         <Table aria-label="What each column is taken as">
           <thead>
             <tr>
@@ -86,7 +87,7 @@ export function TakenAs({
             ))}
           </tbody>
         </Table>
-      </div>
+      </ScrollBox>
       {left.length > 0 ? (
         <p className="mt-2 max-w-read text-xs text-ink-3">
           Left out: {left.map(({ header, why }) => `${header} (${why})`).join(", ")}.
