@@ -27,6 +27,8 @@ interface Row {
   interval?: IntervalName;
   /** Times this for the page: per cent. */
   factor?: number;
+  /** In place of the printed figure: "2 of 3". */
+  text?: string;
   note?: string;
 }
 
@@ -101,7 +103,8 @@ function Figure({
   intervals: ComparisonIntervals | null;
 }) {
   if (row.value === null) return <span title={row.note}>{ABSENT}</span>;
-  const text = Number.isFinite(row.value) ? fixed((row.factor ?? 1) * row.value, row.digits) : "infinite";
+  const text =
+    row.text ?? (Number.isFinite(row.value) ? fixed((row.factor ?? 1) * row.value, row.digits) : "infinite");
   return (
     <Provenance
       name={row.name}
@@ -325,7 +328,8 @@ function agreementRows({ comparison, paired }: Comparison): Row[] {
           name: `Of the ${k} lowest, in common`,
           value: top.common,
           digits: 0,
-          unit: `of ${Math.max(top.levelCount, top.referenceCount)}`,
+          text: `${top.common} of ${Math.max(top.levelCount, top.referenceCount)}`,
+          unit: "",
           formula: <>conformers among the {k} lowest of both levels</>,
           note: tied
             ? `with ties ${top.levelCount} at the level, ${top.referenceCount} at the reference`
