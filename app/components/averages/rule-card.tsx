@@ -29,6 +29,8 @@ export function RuleCard({
   const [wanted, setWanted] = useState(now);
   const rules = [...new Set([...possibleRules(property), now])];
   const facts = { degeneracies: weighed.kept.map((one) => one.degeneracy), mirrorMerged };
+  // Stored values are merged over pairs by the rule as it is; another rule merges them anew on the server.
+  const pairs = property.definition?.atoms.length ?? 1;
   const having = property.values.filter((value) => value !== null).length;
   // What was picked on the structure leaves no doubt, but for a distance.
   const settled = property.definition !== null && property.definition.observable !== "distance";
@@ -40,7 +42,7 @@ export function RuleCard({
       <QuestionCard
         count="Rule of averaging"
         title={`How is “${property.name}” averaged?`}
-        reason={`${formatCount(having)} of ${formatCount(property.values.length)} conformers have a value. The rule decides the result:`}
+        reason={`${formatCount(having)} of ${formatCount(property.values.length)} conformers have a value. The rule decides the result:${pairs > 1 ? ` (Its ${pairs} equivalent pairs are averaged anew by another rule, which moves the figures of the rules not taken a little.)` : ""}`}
         footer={
           <>
             <SubmitButton

@@ -1,3 +1,4 @@
+import type { ReactNode } from "react";
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, type Choose, Plot, usePlot } from "~/components/charts/plot";
 import { depthColour } from "~/components/ui/depth-strip";
@@ -93,7 +94,11 @@ export function ValueDistribution({
           populations={populations}
           name={name}
           average={average.value}
-          averageWords={`${RULE_WORDS[moments.rule].name} ${fixed(average.value, digits)}`}
+          averageWords={
+            <>
+              <RuleLetters rule={moments.rule} /> {fixed(average.value, digits)}
+            </>
+          }
           range={
             error && error.low !== null && error.high !== null && average.value !== null
               ? [error.low, error.high]
@@ -110,6 +115,20 @@ export function ValueDistribution({
         />
       </Plot>
     </ChartFrame>
+  );
+}
+
+/** The rule in a drawing, its power raised. */
+function RuleLetters({ rule }: { rule: AverageRule }) {
+  if (rule !== "r-6" && rule !== "r-3") return <>{RULE_WORDS[rule].name}</>;
+  return (
+    <>
+      r
+      <tspan dy={-4} fontSize={9}>
+        −{rule.slice(2)}
+      </tspan>
+      <tspan dy={4}> average</tspan>
+    </>
   );
 }
 
@@ -146,7 +165,7 @@ function Layer({
   populations: Float64Array;
   name: (index: number) => string;
   average: number | null;
-  averageWords: string;
+  averageWords: ReactNode;
   range: [number, number] | null;
   other: { value: number; words: string } | null;
 }) {
