@@ -9,7 +9,8 @@ function cookie() {
     httpOnly: true,
     secure,
     sameSite: "lax",
-    path: "/login",
+    // Pages fetched by the router end in ".data": below "/login" alone they would come without it.
+    path: "/",
     maxAge: MINUTES * 60,
     secrets: SESSION_SECRET ?? [],
   });

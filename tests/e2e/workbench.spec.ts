@@ -151,7 +151,7 @@ test.describe("populations", () => {
     await page.keyboard.press("Shift+ArrowDown");
     await expect(rows.nth(2)).toHaveAttribute("aria-selected", "true");
     await expect(page).toHaveURL(/sel=\d+,\d+/);
-    await page.getByRole("button", { name: /^Found/ }).press("Enter");
+    await page.getByRole("link", { name: /^Found/ }).press("Enter");
     await expect(page.getByRole("columnheader", { name: /^Found/ })).toHaveAttribute(
       "aria-sort",
       "descending",

@@ -22,7 +22,7 @@ export function ReferencePage({
 }) {
   return (
     <div className={`pt-8 pb-16 max-sm:pt-4 ${pageClass}`}>
-      <div className="grid gap-x-12 lg:grid-cols-[16rem_minmax(0,1fr)]">
+      <div className="grid grid-cols-[minmax(0,1fr)] gap-x-12 lg:grid-cols-[16rem_minmax(0,1fr)]">
         <div className="lg:col-start-2">
           <h1 className="text-lg font-semibold tracking-title sm:text-2xl">{title}</h1>
           <p className="mt-2 max-w-[46rem] text-base text-pretty text-ink-2 sm:text-lg">{lead}</p>
@@ -58,7 +58,7 @@ export function ReferencePage({
               >
                 {section.title}
               </h2>
-              <div className="mt-4 grid max-w-read gap-3 text-base [&>ul]:grid [&>ul]:list-disc [&>ul]:gap-2 [&>ul]:pl-6">
+              <div className="mt-4 grid max-w-read grid-cols-[minmax(0,1fr)] gap-3 text-base [overflow-wrap:anywhere] max-sm:[&_table]:text-xs max-sm:[&_td]:px-1 max-sm:[&_th]:px-1 [&>ul]:grid [&>ul]:list-disc [&>ul]:gap-2 [&>ul]:pl-6">
                 {section.body}
               </div>
             </section>
