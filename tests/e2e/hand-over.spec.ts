@@ -1,42 +1,40 @@
 import { randomUUID } from "node:crypto";
+import { readFileSync } from "node:fs";
 import path from "node:path";
 import type { Page } from "@playwright/test";
-import { expect, expectAccessible, hydrated, test } from "./base";
+import { expect, expectAccessible, hydrated, signIn, test } from "./base";
 
 const FILE = path.join(import.meta.dirname, "../../fixtures/reference/ensembles/difluoroethane.xyz");
 
-/** A new person with one ensemble of their own, on its Hand-over page. */
+/** The file with comments of its own, so that no two tests share an ensemble. */
+function ownFile(): Buffer {
+  const lines = readFileSync(FILE, "utf8").split("\n");
+  const atoms = Number(lines[0]);
+  for (let at = 1; at < lines.length; at += atoms + 2)
+    lines[at] = `run=${randomUUID()} energy=${lines[at]?.trim()}`;
+  return Buffer.from(lines.join("\n"));
+}
+
+/** A new ensemble of the analyst's team, on its Hand-over page. */
 async function handOver(page: Page): Promise<void> {
-  await page.goto("/sign-up");
-  await page.getByLabel("Name, as the logbook shows it").fill("Walker");
-  await page.getByLabel("Address").fill(`walker.${randomUUID()}@lab.example`);
-  await page.getByLabel("Password").fill("seven brown kettles sing");
-  await page.getByRole("button", { name: "Sign up" }).click();
-  await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);
-  await hydrated(page);
-  await page.getByLabel("Add files", { exact: true }).setInputFiles(FILE);
-  await page.waitForURL(/\/intake$/);
-  const id = /ensembles\/([a-z2-7]{16})/.exec(page.url())?.[1] ?? "";
-  await answerQuestions(page);
+  await signIn(page);
+  const { origin, pathname } = new URL(page.url());
+  const answer = await page.request.post("/files/upload", {
+    headers: { origin },
+    multipart: {
+      team: pathname.split("/")[2] ?? "",
+      name: "1,2-Difluoroethane to hand over",
+      level: "MMFF94",
+      energyUnit: "kcal/mol",
+      energyFrom: "key:energy",
+      file: { name: "difluoroethane.xyz", mimeType: "chemical/x-xyz", buffer: ownFile() },
+    },
+  });
+  expect(answer.status()).toBe(201);
+  const { id } = (await answer.json()) as { id: string };
   await page.goto(`/ensembles/${id}/hand-over`);
   await hydrated(page);
   await expect(page.getByRole("button", { name: "Freeze edition 1" })).toBeVisible({ timeout: 30_000 });
-}
-
-/** What intake asks of this file: proposed answers are taken. */
-async function answerQuestions(page: Page): Promise<void> {
-  const asked = page.getByText(/^Question \d of \d$/);
-  for (let k = 0; k < 4 && (await asked.count()) > 0; k++) {
-    const card = page
-      .getByRole("form")
-      .or(page.locator("form"))
-      .filter({ has: page.getByRole("radio") })
-      .first();
-    const name = card.getByRole("textbox");
-    if ((await name.count()) > 0) await name.first().fill("MMFF94");
-    await card.getByRole("button").last().click();
-    await page.waitForTimeout(500);
-  }
 }
 
 test.describe("handing over", () => {

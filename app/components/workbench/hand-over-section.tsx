@@ -1,4 +1,5 @@
-import { Link, useLocation } from "react-router";
+import { useEffect } from "react";
+import { Link, useLocation, useRevalidator } from "react-router";
 import type { HandOverAnswer } from "~/components/hand-over/answer";
 import { CitationBlock } from "~/components/hand-over/citation-block";
 import { CompareBlock } from "~/components/hand-over/compare-block";
@@ -30,6 +31,7 @@ export function HandOverSection({
 }) {
   const { ensemble, sift, result } = useWorkbench();
   const { search } = useLocation();
+  useCatchUp(result !== null && view.methods === null);
   const last = view.editions[0];
   if ((sift === null || result === null) && last === undefined) {
     return (
@@ -93,4 +95,12 @@ export function HandOverSection({
       <SourcesBlock />
     </section>
   );
+}
+
+/** Where the sift ended between two reads of one page, the part that came too early is fetched again, once. */
+function useCatchUp(early: boolean) {
+  const { revalidate } = useRevalidator();
+  useEffect(() => {
+    if (early) void revalidate();
+  }, [early, revalidate]);
 }

@@ -5,6 +5,7 @@ import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { env } from "~/env.server";
 import { readState } from "~/lib/url-state";
+import { readForm } from "~/routes/read-form.server";
 import { editionNumber } from "~/routes/share/share-call.server";
 import type { Actor } from "~/services/auth/access.server";
 import { freezeEdition, freezeSchema } from "~/services/editions/freeze-edition.server";
@@ -33,7 +34,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
   const { sift: siftId, temperatureK: temperature, weights } = readState(url.searchParams);
   return forPage(context.get(requestIdContext), async () => {
     const sift = await loadSift({ actor, ensembleId, siftId });
-    const shown = { siftId: sift?.status === "done" ? sift.id : null, temperature, weights };
+    const shown = { siftId: sift?.id ?? null, temperature, weights };
     const [files, view] = await Promise.all([
       sift === null ? null : describeExports({ actor, siftId: sift.id, temperature }),
       loadHandOver({ actor, ensembleId, ...shown, compare: comparedIn(url.searchParams) }),
@@ -46,7 +47,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
 export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     try {
       return await act(actor, params.id, form);
     } catch (error) {
