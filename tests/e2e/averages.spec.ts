@@ -43,6 +43,8 @@ const row = (page: Page, name: RegExp) =>
   page.getByRole("table", { name: "Averages of the properties" }).getByRole("row", { name });
 
 test("a contact and a torsion picked on the structure are averaged by their rules", async ({ page }) => {
+  // Six pages one after the other, each with its structures.
+  test.slow();
   const id = await takeIn(page, "averages");
   await pick(page, "16,26");
   await page.getByRole("button", { name: "Make it a column" }).click();
