@@ -66,7 +66,7 @@ test("a table is looked at, its questions answered, then kept", async ({ page })
   await expectAccessible(page);
   await add.click();
   await expect(rows(page).filter({ hasText: "PM7" })).toContainText("the table six.csv");
-  await expect(rows(page).filter({ hasText: "rg" })).toContainText(/5\s*1/);
+  await expect(rows(page).filter({ hasText: /^rg/ })).toContainText("nm");
 });
 
 test("a second structure file in another order becomes a level, and a formula another", async ({ page }) => {
