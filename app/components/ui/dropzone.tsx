@@ -5,7 +5,7 @@ import { type ButtonKind, buttonClass } from "./button";
 import { linkClass } from "./text-link";
 
 /** What the file dialog offers first; content decides in the end, so that any name may be chosen. */
-const ACCEPT = ".xyz,.extxyz,.gz,.txt";
+const ACCEPT = ".xyz,.extxyz,.sdf,.sd,.mol,.gz,.zip,.txt";
 
 function filesOf(data: DataTransfer | null): File[] {
   return data ? Array.from(data.files) : [];

@@ -4,6 +4,7 @@ import { Button, SubmitButton } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
 import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
 import { ABSENT, fixed, formatEnergy, withUnit } from "~/lib/format";
+import { readAskId } from "~/lib/intake/reading-questions";
 import type { IntakeQuestion, QuestionOption as Option } from "~/lib/intake/report";
 import type { ActAnswer } from "./act-answer";
 
@@ -104,6 +105,7 @@ function AskCard({
 function buttonWords(question: IntakeQuestion, chosen: Option | undefined): string {
   if (question.code === "level") return "Name the level";
   if (!chosen) return "Choose first";
+  if (readAskId(question.id)) return chosen.id === "hold" ? "Keep them held" : chosen.text;
   if (chosen.id === "none") return "Take the structures without energies";
   return question.code === "energy-unit" ? `Confirm ${chosen.text}` : `Use ${chosen.text}`;
 }
@@ -111,6 +113,7 @@ function buttonWords(question: IntakeQuestion, chosen: Option | undefined): stri
 function footWords(question: IntakeQuestion): string {
   if (question.code === "energy-unit") return "The factor is printed in every report.";
   if (question.code === "level") return "It keeps one hue and marker wherever it appears.";
+  if (readAskId(question.id)) return "The files are read again with this answer.";
   return "One rule for all frames.";
 }
 

@@ -414,7 +414,7 @@ const ConformerLine = memo(function ConformerLine({
           {row.symmetryNumber ?? ABSENT}
         </Td>
         <Td align="right" className={MID}>
-          {row.found}
+          <span title={row.foundIn ?? undefined}>{row.found}</span>
         </Td>
         <Td align="right" className={`${WIDE} noscript:hidden`}>
           {rmsd === undefined && awaited ? <Skeleton className="ml-auto h-3 w-9" /> : rmsdText}
@@ -440,7 +440,10 @@ const ConformerLine = memo(function ConformerLine({
                 {row.copies === null ? ABSENT : fixed(row.copies, Number.isInteger(row.copies) ? 0 : 2)}
               </dd>
               <dt>found</dt>
-              <dd>{plural(row.found, "time")}</dd>
+              <dd>
+                {plural(row.found, "time")}
+                {row.foundIn ? ` (${row.foundIn})` : ""}
+              </dd>
               <dt>RMSD to its mirror image</dt>
               <dd>{formatRmsd(row.mirrorRmsd)} Å</dd>
               <dt>RMSD to the selected</dt>

@@ -247,12 +247,15 @@ function KeptRow({
             <span className="w-18 shrink-0 text-right max-sm:w-9">
               <span className={MID}>found </span>
               {row.found}×
+              {row.foundIn ? (
+                <span className="block text-xs whitespace-nowrap text-ink-3">{row.foundIn}</span>
+              ) : null}
             </span>
             <svg
               aria-hidden="true"
               width="100%"
               height="8"
-              className="block min-w-8 max-w-32 overflow-visible"
+              className="block min-w-8 max-w-32 overflow-visible max-[24rem]:hidden"
             >
               <rect
                 x="0.5"

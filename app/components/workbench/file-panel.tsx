@@ -21,6 +21,8 @@ export function FilePanel() {
             <p className="text-xs text-ink-3">
               {file.format.toUpperCase()}, {plural(file.frames, "frame")}
               {ensemble.files.length > 1 ? ` from ${file.firstFrame}` : ""}
+              {file.batch > 1 ? `, batch ${file.batch}` : ""}
+              {file.archive ? `, out of ${file.archive}` : ""}
             </p>
             <p className="flex flex-wrap gap-x-4 gap-y-1 text-xs text-ink-3">
               <span title={file.sha256}>SHA-256 {formatChecksum(file.sha256)}</span>
@@ -45,11 +47,13 @@ export function FilePanel() {
       </ul>
       {ensemble.mayCompute ? (
         <p className="mt-3 text-xs text-ink-3 print:hidden">
-          Another file?{" "}
+          Another search of this molecule?{" "}
+          <TextLink to={href("/ensembles/:id/intake", { id: ensemble.id })}>Add it at Intake</TextLink>.
+          Another molecule?{" "}
           <TextLink to={`${href("/teams/:team", { team: ensemble.team.id })}?series=${ensemble.series.id}`}>
             Drop it on the series
-          </TextLink>{" "}
-          and it becomes an ensemble of its own.
+          </TextLink>
+          .
         </p>
       ) : null}
     </section>

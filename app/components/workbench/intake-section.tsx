@@ -7,6 +7,7 @@ import { TextLink } from "~/components/ui/text-link";
 import { formatCount } from "~/lib/format";
 import type { IntakeView } from "~/lib/views";
 import { intakeFinding } from "~/lib/workbench/findings";
+import { AddBatch } from "./add-batch";
 import { AskCards } from "./ask-cards";
 import { FileMessages, HeldList, RemarkedList } from "./frame-lists";
 import { FrameStripFigure } from "./frame-strip-figure";
@@ -37,7 +38,7 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
       </div>
       <KeyFigures>
         <KeyFigure label="Frames" value={formatCount(ensemble.frames)} />
-        {asks ? (
+        {asks && ensemble.accepted === 0 ? (
           <KeyFigure label="Wait for an answer" value={formatCount(intake.waiting)} />
         ) : (
           <KeyFigure label="Accepted" value={formatCount(ensemble.accepted)} />
@@ -61,6 +62,7 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
         <HeldList frames={intake.held} waiting={intake.waiting} />
         <RemarkedList frames={intake.remarked} />
       </div>
+      {ensemble.mayCompute && !(asks && ensemble.accepted === 0) ? <AddBatch /> : null}
       <FileMessages messages={intake.messages} files={ensemble.files} />
       <section className="mt-9 print:hidden">
         <h3 className="text-sm font-semibold">Levels and tables</h3>

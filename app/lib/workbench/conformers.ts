@@ -19,6 +19,8 @@ export interface ConformerRow {
   copies: number | null;
   mirrorRmsd: number;
   found: number;
+  /** Which search found it how often, in words; null where there was one search. */
+  foundIn?: string | null;
   /** Lies above the window that the reader set. */
   outside: boolean;
   /** An RMSD concerned could only be bounded from above. */
@@ -48,10 +50,16 @@ export function conformerRows(
     copies: conformer.copies,
     mirrorRmsd: conformer.mirrorRmsd,
     found: conformer.found,
+    foundIn: foundInWords(conformer),
     outside:
       windowKcal !== null && conformer.relativeEnergy !== null && conformer.relativeEnergy > windowKcal,
     upperBound: conformer.upperBound === true,
   }));
+}
+
+/** "batch 1: 3, batch 2: 1" */
+function foundInWords({ foundIn }: KeptConformer): string | null {
+  return foundIn?.map(({ batch, found }) => `batch ${batch}: ${found}`).join(", ") ?? null;
 }
 
 /** Name of a kept conformer by its position from 0. */

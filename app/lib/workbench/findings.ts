@@ -207,6 +207,14 @@ export function intakeFinding(ensemble: EnsembleView, waiting: number): Finding 
       accepted > 0 ? `${formatCount(accepted)} ${accepted === 1 ? "is" : "are"} accepted already` : null,
       other > 0 ? `${formatCount(other)} ${other === 1 ? "is" : "are"} held for other reasons` : null,
     ].filter((part) => part !== null);
+    if (accepted > 0) {
+      const open =
+        openQuestions === 1 ? "One question is" : `${capital(countWord(openQuestions))} questions are`;
+      return {
+        text: `${read} ${joinWords(parts)}. ${open} open; what is accepted is used meanwhile.`,
+        second: null,
+      };
+    }
     return {
       text: `${read} ${joinWords(parts)}. ${first} first; nothing is computed before ${openQuestions === 1 ? "it is" : "they are"} answered.`,
       second: null,
