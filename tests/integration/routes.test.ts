@@ -82,7 +82,7 @@ describe("objects of another team look like objects that are not there", () => {
   it.each(PATTERNS)("at %s, for a member of another team", async (pattern) => {
     const who = pattern.startsWith("/api/") ? { token: people.outsiderToken } : { cookie: people.outsider };
     expect(await same(pattern, "GET", who)).toBe(
-      /\/api\/.*(answers|reread|release|hold|sifts|files)$|^\/files\/.*\/(sifts|files|pair-matrix)$/.test(
+      /\/api\/.*(answers|reread|release|hold|sifts|files|columns)$|^\/files\/.*\/(sifts|files|columns|pair-matrix)$/.test(
         pattern,
       )
         ? 405

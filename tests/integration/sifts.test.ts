@@ -115,7 +115,7 @@ describe("a sift", () => {
   it.each([
     [{}, "level"],
     [{ level: "B3LYP" }, "level"],
-    [{ level: "MMFF94", window: 0 }, "window"],
+    [{ level: "MMFF94", window: -1 }, "window"],
     [{ level: "MMFF94", window: "3" }, "window"],
     [{ level: null, window: 3 }, "window"],
     [{ level: "MMFF94", rmsdTolerance: -1 }, "rmsdTolerance"],
@@ -182,12 +182,12 @@ describe("a sift", () => {
 });
 
 describe("GET /sifts/:id?wait=", () => {
-  it.each(["-1", "61", "abc", "1e9", "0x1", " 1"])("refuses wait=%s", async (wait) => {
+  it.each(["-1", "abc", "0x1", " 1"])("refuses wait=%s", async (wait) => {
     const { id } = await (await ask({ level: "MMFF94" })).json();
     expect((await get(`/sifts/${id}?wait=${encodeURIComponent(wait)}`)).status).toBe(422);
   });
 
-  it.each(["", "0", "0.5", "60"])("takes wait=%s", async (wait) => {
+  it.each(["", "0", "0.5", "60", "61", "1e9"])("takes wait=%s", async (wait) => {
     const { id } = await (await ask({ level: "MMFF94" })).json();
     await get(`/sifts/${id}?wait=60`);
     expect((await get(`/sifts/${id}?wait=${wait}`)).status).toBe(200);
@@ -313,9 +313,9 @@ describe("exports", () => {
     );
   });
 
-  it("SDF does not exist yet, a bad temperature is refused, and an export stands in the logbook", async () => {
+  it("refuse a bad temperature, and stand in the logbook", async () => {
     const sift = await sifted(token, ensembleId, { level: "MMFF94" });
-    expect((await get(`/sifts/${sift.id}/export.sdf`)).status).toBe(404);
+    expect((await get(`/sifts/${sift.id}/export.sdf`)).status).toBe(200);
     expect((await get(`/sifts/${sift.id}/export.csv?temperature=x`)).status).toBe(422);
     const rows = await db
       .select({ type: logbook.type })
