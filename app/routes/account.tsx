@@ -10,6 +10,7 @@ import { actorContext, cookieChangeContext, requestIdContext } from "~/context";
 import { capital, pluralWord } from "~/lib/format";
 import { callerOf } from "~/middleware/caller.server";
 import { requireUserMiddleware } from "~/middleware/require-user.server";
+import { readForm } from "~/routes/read-form.server";
 import { askNewAddress } from "~/services/account/change-address.server";
 import { changePassword } from "~/services/account/change-password.server";
 import { deleteAccount } from "~/services/account/delete-account.server";
@@ -48,7 +49,7 @@ export async function action({ request, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   const caller = callerOf(request, context);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     const text = (name: string) => String(form.get(name) ?? "");
     const intent = text("intent");
     const done = (words: string): AccountAnswer => ({ ok: true, intent, done: words });

@@ -7,6 +7,7 @@ import { StatePanel } from "~/components/ui/state-panel";
 import { TextLink } from "~/components/ui/text-link";
 import { requestIdContext } from "~/context";
 import { callerOf } from "~/middleware/caller.server";
+import { readForm } from "~/routes/read-form.server";
 import { requestReset } from "~/services/auth/request-reset.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import type { Route } from "./+types/forgot-password";
@@ -18,7 +19,7 @@ export const headers: Route.HeadersFunction = ({ actionHeaders }) => actionHeade
 
 export async function action({ request, context }: Route.ActionArgs) {
   return forPage(context.get(requestIdContext), async () => {
-    const email = String((await request.formData()).get("email") ?? "");
+    const email = String((await readForm(request)).get("email") ?? "");
     try {
       await requestReset({ email, caller: callerOf(request, context) });
       return { sent: true as const, message: null };

@@ -8,6 +8,7 @@ import { actorContext, cookieChangeContext, requestIdContext } from "~/context";
 import { formatDate } from "~/lib/format";
 import { ROLE_WORDS } from "~/lib/people-words";
 import { callerOf } from "~/middleware/caller.server";
+import { readForm } from "~/routes/read-form.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import { findInvitation, joinByPassword, joinSignedIn } from "~/services/people/accept-invitation.server";
 import { findPerson } from "~/services/teams/find-person.server";
@@ -36,7 +37,7 @@ export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   const caller = callerOf(request, context);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     const text = (name: string) => String(form.get(name) ?? "");
     try {
       if (actor.kind === "user") {

@@ -10,6 +10,7 @@ import { env } from "~/env.server";
 import { ownPath } from "~/lib/own-path";
 import { callerOf } from "~/middleware/caller.server";
 import { readTypedAddress } from "~/middleware/typed-address.server";
+import { readForm } from "~/routes/read-form.server";
 import { formAuthenticator } from "~/services/auth/authenticator.server";
 import { signOut } from "~/services/auth/sign-out.server";
 import { forPage, refuseForm } from "~/services/http.server";
@@ -44,7 +45,7 @@ export async function action({ request, context, url }: Route.ActionArgs) {
       await signOut(context.get(actorContext), caller.address);
       context.get(cookieChangeContext).change = { secret, stay };
     } catch (error) {
-      const form = await copy.formData();
+      const form = await readForm(copy);
       return refuseForm(error, { email: String(form.get("email") ?? "") });
     }
     return redirect(target(url), 303);

@@ -4,6 +4,7 @@ import { ButtonLink, SubmitButton } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
 import { requestIdContext } from "~/context";
 import { callerOf } from "~/middleware/caller.server";
+import { readForm } from "~/routes/read-form.server";
 import { isResetOpen, resetPassword } from "~/services/auth/reset-password.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import type { Route } from "./+types/reset-password";
@@ -22,7 +23,7 @@ export async function loader({ params, context }: Route.LoaderArgs) {
 export async function action({ request, params, context }: Route.ActionArgs) {
   const caller = callerOf(request, context);
   return forPage(context.get(requestIdContext), async () => {
-    const password = String((await request.formData()).get("password") ?? "");
+    const password = String((await readForm(request)).get("password") ?? "");
     try {
       await resetPassword({ secret: params.secret, password, caller });
     } catch (error) {

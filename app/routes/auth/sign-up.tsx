@@ -8,6 +8,7 @@ import { actorContext, cookieChangeContext, requestIdContext } from "~/context";
 import { env } from "~/env.server";
 import { callerOf } from "~/middleware/caller.server";
 import { writeTypedAddress } from "~/middleware/typed-address.server";
+import { readForm } from "~/routes/read-form.server";
 import { signOut } from "~/services/auth/sign-out.server";
 import { signUp } from "~/services/auth/sign-up.server";
 import { forPage, refuseForm } from "~/services/http.server";
@@ -26,7 +27,7 @@ export function loader({ context }: Route.LoaderArgs) {
 export async function action({ request, context }: Route.ActionArgs) {
   const caller = callerOf(request, context);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     const text = (name: string) => String(form.get(name) ?? "");
     const typed = { name: text("name"), email: text("email") };
     try {

@@ -2,12 +2,13 @@ import { href, Outlet } from "react-router";
 import { AppShell } from "~/components/layout/app-shell";
 import type { ShellHandle } from "~/components/layout/breadcrumbs";
 import { actorContext, requestIdContext } from "~/context";
+import { requireObjectMiddleware } from "~/middleware/require-access.server";
 import { requireUserMiddleware } from "~/middleware/require-user.server";
 import { forPage } from "~/services/http.server";
 import { loadTeam } from "~/services/teams/load-team.server";
 import type { Route } from "./+types/layout";
 
-export const middleware: Route.MiddlewareFunction[] = [requireUserMiddleware];
+export const middleware: Route.MiddlewareFunction[] = [requireUserMiddleware, requireObjectMiddleware];
 
 export const handle: ShellHandle<Awaited<ReturnType<typeof loader>>> = {
   crumbs: ({ team }) => [{ label: team.name, to: href("/teams/:team", { team: team.id }) }],

@@ -9,6 +9,7 @@ import { TeamTabs } from "~/components/team/team-tabs";
 import { Finding } from "~/components/ui/finding";
 import { actorContext, requestIdContext } from "~/context";
 import { hidesSomething, readFilter } from "~/lib/logbook/filter";
+import { readForm } from "~/routes/read-form.server";
 import { listSeries } from "~/services/ensembles/list-series.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import { loadTeamLogbook } from "~/services/logbook/load-logbook.server";
@@ -38,7 +39,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
 
 export async function action({ request, params, context }: Route.ActionArgs) {
   return forPage(context.get(requestIdContext), async () => {
-    const text = remarkSchema.safeParse((await request.formData()).get("text"));
+    const text = remarkSchema.safeParse((await readForm(request)).get("text"));
     if (!text.success) return data({ message: text.error.issues[0]?.message ?? "" }, { status: 400 });
     try {
       await writeTeamRemark({ actor: context.get(actorContext), teamId: params.team, text: text.data });

@@ -9,6 +9,7 @@ import { TeamTabs } from "~/components/team/team-tabs";
 import { Finding } from "~/components/ui/finding";
 import { actorContext, requestIdContext } from "~/context";
 import { peopleFinding } from "~/lib/people-words";
+import { readForm } from "~/routes/read-form.server";
 import { listSeries } from "~/services/ensembles/list-series.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import { changeRole } from "~/services/people/change-role.server";
@@ -63,7 +64,7 @@ export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   const teamId = params.team;
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     const text = (name: string) => String(form.get(name) ?? "");
     const intent = text("intent");
     try {

@@ -13,6 +13,7 @@ import {
   readSeriesState,
   seriesFinding,
 } from "~/lib/series-state";
+import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { createSeries, seriesNameSchema } from "~/services/ensembles/create-series.server";
 import { deleteEnsemble } from "~/services/ensembles/delete-ensemble.server";
@@ -78,7 +79,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs): Promis
 export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     try {
       return await act(actor, params.team, form);
     } catch (error) {

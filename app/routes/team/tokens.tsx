@@ -9,6 +9,7 @@ import { StatePanel } from "~/components/ui/state-panel";
 import { actorContext, requestIdContext } from "~/context";
 import { env } from "~/env.server";
 import { capital, pluralWord } from "~/lib/format";
+import { readForm } from "~/routes/read-form.server";
 import { listSeries } from "~/services/ensembles/list-series.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import { loadTeam } from "~/services/teams/load-team.server";
@@ -46,7 +47,7 @@ export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   const teamId = params.team;
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     try {
       if (form.get("intent") === "revoke") {
         await revokeToken({ actor, teamId, tokenId: String(form.get("token") ?? "") });

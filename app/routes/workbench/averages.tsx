@@ -4,6 +4,7 @@ import type { ActAnswer } from "~/components/workbench/act-answer";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { readState } from "~/lib/url-state";
+import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { loadAverages } from "~/services/averages/load-averages.server";
 import { addObservable, observableRequestSchema } from "~/services/averages/observe.server";
@@ -27,7 +28,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
 export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     try {
       return await act(actor, params.id, form);
     } catch (error) {

@@ -4,6 +4,7 @@ import type { ActAnswer } from "~/components/workbench/act-answer";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { DomainError } from "~/lib/errors";
+import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { changeColumn, columnChangeSchema } from "~/services/columns/change-column.server";
 import { checkFormula, deriveColumn, deriveSchema } from "~/services/columns/derive-column.server";
@@ -27,7 +28,7 @@ export async function loader({ params, context }: Route.LoaderArgs) {
 export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     try {
       return await act(actor, params.id, form);
     } catch (error) {

@@ -3,6 +3,7 @@ import type { OutsideAnswerToForm } from "~/components/outside/add-structure";
 import { CompareSection } from "~/components/outside/compare-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
+import { readForm } from "~/routes/read-form.server";
 import { openForm } from "~/services/ensembles/read-multipart.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import { addOutside } from "~/services/outside/add-outside.server";
@@ -33,7 +34,7 @@ export async function action({ request, params, context }: Route.ActionArgs) {
         const { id, name } = await addOutside({ actor, ensembleId, form });
         return { ok: true, id, name } satisfies OutsideAnswerToForm;
       }
-      const form = await request.formData();
+      const form = await readForm(request);
       const outsideId = String(form.get("outside") ?? "");
       const intent = form.get("intent");
       if (intent !== "remove" && intent !== "restore") throw notFound();

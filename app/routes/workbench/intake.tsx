@@ -4,6 +4,7 @@ import { IntakeSection } from "~/components/workbench/intake-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import type { IntakeView } from "~/lib/views";
+import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { answerQuestions } from "~/services/ensembles/answer-questions.server";
 import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
@@ -20,7 +21,7 @@ export function meta({ matches }: Route.MetaArgs) {
 export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     try {
       return await act(actor, params.id, form);
     } catch (error) {

@@ -3,11 +3,14 @@ import type { ShellHandle } from "~/components/layout/breadcrumbs";
 import { WorkbenchPage } from "~/components/workbench/workbench-page";
 import { actorContext, requestIdContext } from "~/context";
 import { readState } from "~/lib/url-state";
+import { requireObjectMiddleware } from "~/middleware/require-access.server";
 import { loadEnsemble } from "~/services/ensembles/load-ensemble.server";
 import { loadIntake } from "~/services/ensembles/load-intake.server";
 import { forPage } from "~/services/http.server";
 import { loadSift } from "~/services/sifts/load-sift.server";
 import type { Route } from "./+types/layout";
+
+export const middleware: Route.MiddlewareFunction[] = [requireObjectMiddleware];
 
 export const handle: ShellHandle<Awaited<ReturnType<typeof loader>>> = {
   crumbs: ({ ensemble: { team, series, name, role } }) => [

@@ -3,6 +3,7 @@ import { LogbookSection } from "~/components/workbench/logbook-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { readFilter } from "~/lib/logbook/filter";
+import { readForm } from "~/routes/read-form.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import { loadLogbook } from "~/services/logbook/load-logbook.server";
 import { remarkSchema, writeRemark } from "~/services/logbook/write-remark.server";
@@ -22,7 +23,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
 
 export async function action({ request, params, context }: Route.ActionArgs) {
   return forPage(context.get(requestIdContext), async () => {
-    const text = remarkSchema.safeParse((await request.formData()).get("text"));
+    const text = remarkSchema.safeParse((await readForm(request)).get("text"));
     if (!text.success) return data({ message: text.error.issues[0]?.message ?? "" }, { status: 400 });
     try {
       await writeRemark({ actor: context.get(actorContext), ensembleId: params.id, text: text.data });

@@ -2,6 +2,7 @@ import type { ShouldRevalidateFunctionArgs } from "react-router";
 import { PlanSection } from "~/components/plan/plan-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
+import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import { loadLevelEnergies } from "~/services/levels/load-level-energies.server";
@@ -24,7 +25,7 @@ export async function loader({ params, context }: Route.LoaderArgs) {
 export async function action({ request, params, context }: Route.ActionArgs) {
   const actor = context.get(actorContext);
   return forPage(context.get(requestIdContext), async () => {
-    const form = await request.formData();
+    const form = await readForm(request);
     try {
       return await act(actor, params.id, form);
     } catch (error) {
