@@ -10,11 +10,12 @@ export const meta: Route.MetaFunction = () => [
 ];
 
 export function loader(): FormatLimits {
-  const { MAX_FILE_BYTES, MAX_FRAMES, MAX_ATOMS, TEAM_QUOTA_BYTES, APP_ORIGIN } = env();
+  const { MAX_FILE_BYTES, MAX_FRAMES, MAX_ATOMS, MAX_COLUMNS, TEAM_QUOTA_BYTES, APP_ORIGIN } = env();
   return {
     fileBytes: MAX_FILE_BYTES,
     frames: MAX_FRAMES,
     atoms: MAX_ATOMS,
+    columns: MAX_COLUMNS,
     teamBytes: TEAM_QUOTA_BYTES,
     origin: APP_ORIGIN,
   };

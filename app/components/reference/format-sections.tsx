@@ -9,6 +9,7 @@ export interface FormatLimits {
   fileBytes: number;
   frames: number;
   atoms: number;
+  columns: number;
   teamBytes: number;
   origin: string;
 }
@@ -36,7 +37,8 @@ function Files({ limits }: { limits: FormatLimits }) {
       <ul>
         <li>{formatBytes(limits.fileBytes)} unpacked a file</li>
         <li>
-          {formatCount(limits.frames)} frames a file, {formatCount(limits.atoms)} atoms a frame
+          {formatCount(limits.frames)} frames a file, {formatCount(limits.atoms)} atoms a frame,{" "}
+          {formatCount(limits.columns)} columns out of comments and data fields
         </li>
         <li>{trimmed(limits.teamBytes / 1e9, 1)} GB of original bytes a team</li>
       </ul>
@@ -215,6 +217,20 @@ function Energies() {
           {
             input: "No energy in some frames",
             note: "they get no population; never 0, never the mean",
+            ...REMARK,
+          },
+          {
+            input: "Text, a decimal comma or a number out of range where the energy should be",
+            note: "that frame has no energy; never a part of it",
+            ...REMARK,
+          },
+          {
+            input: "Two units beside one number",
+            note: "frames with another than the one stated stay without energy",
+            ...ASKED,
+          },
+          {
+            input: "Free energies without their temperature, or populations at another one",
             ...REMARK,
           },
           { input: "Too few digits, one frame far off, all frames equal", ...REMARK },

@@ -36,7 +36,7 @@ function checkHead(
       code: "G10",
       file: name,
       message: `This is ${what ?? "a table"}. Structures are read from XYZ or SDF, plain or gzip.`,
-      hint: "Write the structures as XYZ or SDF and send them again.",
+      hint: "Write the structures as XYZ or SDF and send them again. A table of values belongs to an ensemble that is there: add it to its columns.",
     });
   }
   if (found.remark) remark({ ...found.remark, severity: "remark", file: name });
