@@ -105,9 +105,12 @@ export function AlternativesTable({
                   </span>
                   <span className="block font-normal">
                     {k === chosen ? (
-                      "this plan"
+                      <span className="inline-flex min-h-6 items-center">this plan</span>
                     ) : (
-                      <TextButton onClick={() => onChange({ ...set, chosen: k })}>
+                      <TextButton
+                        className="inline-flex min-h-6 min-w-6 items-center pointer-coarse:min-h-11"
+                        onClick={() => onChange({ ...set, chosen: k })}
+                      >
                         Take<span className="sr-only"> {name}</span>
                       </TextButton>
                     )}
