@@ -188,7 +188,7 @@ describe("bootstrap intervals", () => {
       expect(Math.abs((found[name]?.low ?? 0) - low), name).toBeLessThan(0.12 * (high - low));
       expect(Math.abs((found[name]?.high ?? 0) - high), name).toBeLessThan(0.12 * (high - low));
     }
-  });
+  }, 60_000);
 
   it("are exact for two conformers: three resamples in the long run", () => {
     // MSD at own minima of d = {0.5, 0} resampled: (0,0) 1/4 -> 0, (1,1) 1/4 -> 0, mixed 1/2 -> 0.25.
