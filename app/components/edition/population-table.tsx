@@ -30,9 +30,10 @@ export function PopulationTable({ edition }: { edition: EditionView }) {
             <summary className="figures cursor-pointer border-b border-rule px-3 py-2 text-ink-2 max-sm:px-2">
               {formatCount(rest.length)} more
               {edition.temperature === null ? "" : `, ${formatPercent(left, 1)} together`} ·{" "}
-              <span className="text-link underline underline-offset-3">
+              <span className="text-link underline underline-offset-3 print:hidden">
                 show all {formatCount(rows.length)}
               </span>
+              <span className="not-print:hidden">in results.csv</span>
             </summary>
             <Rows rows={rest} widest={widest} label="Further conformers" />
           </details>
