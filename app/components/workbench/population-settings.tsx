@@ -1,4 +1,4 @@
-import { FieldFoot, labelClass } from "~/components/ui/field";
+import { labelClass } from "~/components/ui/field";
 import { LevelName } from "~/components/ui/level-marker";
 import { NumberField } from "~/components/ui/number-field";
 import { SelectField } from "~/components/ui/select-field";
@@ -30,12 +30,6 @@ export function PopulationSettings() {
         <p className="flex min-h-9 items-center">
           {level ? <LevelName name={level.name} ordinal={level.ordinal} /> : "none"}
         </p>
-        {level && level.temperature !== null && Math.abs(level.temperature - temperatureK) > 0.005 ? (
-          <FieldFoot
-            id="level-temperature"
-            error={`These free energies were computed for ${formatTemperature(level.temperature)} K; at another temperature they do not hold.`}
-          />
-        ) : null}
       </div>
       <SliderField
         label="Temperature"
