@@ -27,7 +27,6 @@ import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../../lib/intake/report.ts";
 import { isSdfFrame } from "../../lib/sdf/frame.ts";
 import { SDF_READER_VERSION, SdfReader } from "../../lib/sdf.server.ts";
-import { escapeControls } from "../../lib/text/escape.ts";
 import { sniff } from "../../lib/text/sniff.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
 import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
@@ -35,7 +34,7 @@ import { BlockWriter } from "./block-writer.server.ts";
 import { checkFormat } from "./check-format.ts";
 import { type FrameDecision, FrameWriter, writeDecisions } from "./frame-writer.server.ts";
 import { keptOpen, type OpenedFile, openFile, refusalOfPacked, tooManyBytes } from "./open-file.server.ts";
-import { isZip, ZipArchive, type ZipEntry } from "./zip-archive.server.ts";
+import { isZip, shownName, ZipArchive, type ZipEntry } from "./zip-archive.server.ts";
 
 /** Longest time that reading keeps the process from other requests. */
 const BREATH_MS = 15;
@@ -264,7 +263,7 @@ export class Reading {
     entry: ZipEntry,
     of: { name: string; source: number },
   ): Promise<IntakeMessage | null> {
-    const own = [...escapeControls(entry.name)].slice(0, 255).join("");
+    const own = shownName(entry.name);
     if (entry.refusal !== null) {
       const message = `The file in the archive was not taken in: ${entry.refusal}`;
       return { code: "G09", severity: "reject", file: own, message };

@@ -15,6 +15,7 @@ import { openFile } from "./open-file.server.ts";
 import type { FormPart, FormReader } from "./read-multipart.server.ts";
 import { readSource } from "./source-writer.server.ts";
 import { takeInFor } from "./take-in.server.ts";
+import { unpackEntry } from "./zip-archive.server.ts";
 
 type At = Grant & { ensembleId: string };
 
@@ -86,16 +87,17 @@ async function placesIn(at: At, file: number, held: readonly HeldFrame[]): Promi
 
 /** The kept bytes of the frames, as they stand in their file. */
 async function* cut(
-  file: { name: string; format: string; sourceId: string },
+  file: { name: string; entry: string | null; format: string; sourceId: string },
   places: readonly FramePlace[],
 ): AsyncGenerator<Buffer, void, undefined> {
   const cutter = new FrameCutter({ file: file.name, records: file.format.startsWith("SDF"), places });
-  const opened = await openFile(readSource(file.sourceId), {
-    file: file.name,
-    limit: env().MAX_FILE_BYTES,
-    remark: () => {},
-  });
-  for await (const bytes of opened.bytes) {
+  const source = readSource(file.sourceId);
+  const options = { file: file.name, limit: env().MAX_FILE_BYTES, remark: () => {} };
+  const plain =
+    file.entry === null
+      ? (await openFile(source, options)).bytes
+      : unpackEntry(source, file.name, file.entry);
+  for await (const bytes of plain) {
     const found = cutter.push(bytes);
     if (found.length > 0) yield Buffer.concat(found);
     if (cutter.done) return;
@@ -105,8 +107,12 @@ async function* cut(
 }
 
 /** "night-run.xyz.gz" and frames from 7 on: "night-run, frame 7 and 2 more.xyz". */
-function fileName(file: { name: string; format: string }, held: readonly HeldFrame[]): string {
-  const stem = file.name.replace(/(\.(xyz|extxyz|txt|sdf|sd|mol))?(\.gz)?$/i, "") || file.name;
+function fileName(
+  file: { name: string; entry: string | null; format: string },
+  held: readonly HeldFrame[],
+): string {
+  const name = file.entry ?? file.name;
+  const stem = name.replace(/(\.(xyz|extxyz|txt|sdf|sd|mol))?(\.gz)?$/i, "") || name;
   const more = held.length > 1 ? ` and ${held.length - 1} more` : "";
   const ending = file.format.startsWith("SDF") ? "sdf" : "xyz";
   return `${stem.slice(0, 200)}, frame ${held[0]?.number ?? 0}${more}.${ending}`;

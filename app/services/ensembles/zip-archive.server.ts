@@ -4,6 +4,7 @@ import path from "node:path";
 import { Readable } from "node:stream";
 import { crc32, createInflateRaw } from "node:zlib";
 import { IntakeRejection } from "../../lib/intake/reject.ts";
+import { escapeControls } from "../../lib/text/escape.ts";
 
 /** Entries beyond these are no upload of structures (row G11); each costs a look at its header. */
 const MOST_ENTRIES = 10_000;
@@ -224,4 +225,25 @@ function refusalOf(flags: number, method: number, isLink: boolean): string | nul
   if (method !== 0 && method !== 8)
     return "it is packed by a method that is not read. Pack it with “deflate”.";
   return null;
+}
+
+/** The unpacked bytes of one file of an archive, by its name as intake showed it. */
+export async function* unpackEntry(
+  source: AsyncIterable<Uint8Array>,
+  file: string,
+  entry: string,
+): AsyncGenerator<Uint8Array, void, undefined> {
+  const archive = await ZipArchive.from(source, file);
+  try {
+    const found = (await archive.entries()).find(({ name }) => shownName(name) === entry);
+    if (found === undefined) throw broken(file, `The archive has no file “${entry}”.`);
+    yield* archive.unpack(found);
+  } finally {
+    await archive.close();
+  }
+}
+
+/** The name of an entry as messages and pages show it. */
+export function shownName(name: string): string {
+  return [...escapeControls(name)].slice(0, 255).join("");
 }
