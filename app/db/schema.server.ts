@@ -31,6 +31,8 @@ export const answersSchema = z.object({
   level: z.string().nullable(),
   energyKind: z.enum(["electronic", "zero-point", "enthalpy", "free"]).default("electronic"),
   energyTemperature: z.number().nullable().default(null),
+  /** True where the kind was stated, electronic too; absent is not. */
+  kindStated: z.boolean().optional(),
   /** How the files are to be read where they leave it open: the option by the id of its question. */
   reading: z.record(z.string(), z.string()).optional(),
 });

@@ -118,6 +118,15 @@ describe("questions", () => {
   });
 });
 
+it("a kind that was stated stays stated through the answers", async () => {
+  const comments = ["energy=-1.55 scf=-2.55", "energy=-1.45 scf=-2.45"];
+  const electronic = { ...fields, energyKind: "electronic" };
+  const taken = await takenIn(token, file("stated", comments), electronic);
+  const answers = [{ id: "energy-from", option: "key:scf" }];
+  const answered = await (await post(token, `/ensembles/${taken.id}/answers`, { answers })).json();
+  expect(answered.intake.messages.map(({ code }: { code: string }) => code)).not.toContain("E13");
+});
+
 describe("columns", () => {
   it("hold every number under its own name with unit and rule, and energies under levels too", async () => {
     const comments = ["-1.55", "-1.45", "-1.35"].map(

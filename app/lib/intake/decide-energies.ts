@@ -19,6 +19,11 @@ export interface EnergyAnswers {
   energyTemperature: number | null;
 }
 
+/** Whether somebody said which kind of energy it is: any kind but the default says it by itself. */
+export function kindWasStated(answers: { energyKind: EnergyKind; kindStated?: boolean }): boolean {
+  return answers.kindStated ?? answers.energyKind !== "electronic";
+}
+
 /** Answer to the question for the number, and to that for the unit, where it is no energy at all. */
 export const NO_ENERGY = "none";
 

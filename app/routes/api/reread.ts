@@ -17,6 +17,7 @@ export const action = answerCall({
         level: asked.level ?? null,
         energyKind: asked.energyKind ?? "electronic",
         energyTemperature: asked.energyTemperature ?? null,
+        ...(asked.energyKind === undefined ? {} : { kindStated: true }),
       },
       kindStated: asked.energyKind !== undefined,
     });

@@ -1,6 +1,7 @@
 import { and, eq } from "drizzle-orm";
 import { db, inTransaction } from "../../db/client.server.ts";
 import { batches, ensembles, questions } from "../../db/schema.server.ts";
+import { kindWasStated } from "../../lib/intake/decide-energies.ts";
 import type { ReadingChoices } from "../../lib/intake/reading-choices.ts";
 import { readAskId } from "../../lib/intake/reading-questions.ts";
 import type { IntakeQuestion } from "../../lib/intake/report.ts";
@@ -95,7 +96,7 @@ export async function answerReading(at: At, given: readonly ReadingAnswer[]): Pr
   await readAgain(at, {
     answers: { ...row.answers, reading: merged(row.answers.reading, given, 0) as Record<string, string> },
     energies: answersSoFar(row, asked),
-    kindStated: row.answers.energyKind !== "electronic",
+    kindStated: kindWasStated(row.answers),
     mode: {
       refuseOpen: false,
       confirmUnit: row.createdByToken === null,

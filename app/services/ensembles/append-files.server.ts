@@ -48,6 +48,7 @@ function writtenOf(fields: BatchFields): WrittenAnswers {
     level: fields.level ?? null,
     energyKind: fields.energyKind ?? "electronic",
     energyTemperature: fields.energyTemperature ?? null,
+    ...(fields.energyKind === undefined ? {} : { kindStated: true }),
   };
 }
 

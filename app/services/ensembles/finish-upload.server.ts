@@ -24,6 +24,7 @@ function writtenAnswers(fields: UploadFields): WrittenAnswers {
     level: fields.level ?? null,
     energyKind: fields.energyKind ?? "electronic",
     energyTemperature: fields.energyTemperature ?? null,
+    ...(fields.energyKind === undefined ? {} : { kindStated: true }),
   };
 }
 

@@ -1,6 +1,7 @@
 import { and, asc, eq, gt } from "drizzle-orm";
 import { db, inTransaction } from "../../db/client.server.ts";
 import { batches, ensembles } from "../../db/schema.server.ts";
+import { kindWasStated } from "../../lib/intake/decide-energies.ts";
 import type { ReadingChoices } from "../../lib/intake/reading-choices.ts";
 import type { Grant } from "../auth/access.server.ts";
 import { countFiles, optionsAt } from "./batch-place.server.ts";
@@ -53,7 +54,7 @@ async function readOne(
   try {
     const done = await completeBatch(reading, result, ensemble, {
       stated,
-      kindStated: stated.energyKind !== "electronic",
+      kindStated: kindWasStated(stated),
       sources: sourcesOf(reading, files),
       batch,
     });

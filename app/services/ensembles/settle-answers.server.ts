@@ -12,6 +12,7 @@ import {
   decideEnergies,
   type EnergyAnswers,
   type EnergyDecision,
+  kindWasStated,
   NO_ENERGY,
 } from "../../lib/intake/decide-energies.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
@@ -112,7 +113,7 @@ async function decide(
   const settled = settleEnergies(decision, {
     findings,
     answers,
-    kindStated: answers.energyKind !== "electronic",
+    kindStated: kindWasStated(ensemble.answers),
     extended: scanned.extended,
     frames: ensemble.frames,
     accepted,
