@@ -132,6 +132,22 @@ describe("X22, decimal commas", () => {
   });
 });
 
+describe("X22, a lone comma among points", () => {
+  it("is a slip, held without a question", async () => {
+    const slip = [...BUTANE.slice(0, 13), "H 2,0740 0,7640 -0,8840"];
+    const taken = await takenIn(
+      token,
+      [{ name: "slip.xyz", content: frame("-1.5 slip") + frame("-1.4", slip) }],
+      fields,
+    );
+    expect(taken.intake).toMatchObject({ accepted: 1, held: 1, questions: [] });
+    expect(taken.intake.messages.find(({ severity }) => severity === "hold")).toMatchObject({
+      code: "X22",
+      line: 32,
+    });
+  });
+});
+
 describe("X26, a leading running number", () => {
   it("is left out once that is confirmed", async () => {
     const indexed = BUTANE.map((line, k) => `${k + 1} ${line}`);

@@ -26,6 +26,7 @@ type Remark = Omit<IntakeMessage, "severity" | "file" | "frame">;
 /** Makes the frame of a finished builder: last checks, label, charge, remarks, or the one reason why it is held. */
 export function finishFrame(builder: FrameBuilder, place: FramePlace): XyzFrame {
   const cell = readCell(builder.keys);
+  builder.checkDecimals();
   const fault = builder.fault ?? place.fault ?? checkWhole(builder, cell);
   const sound = fault === null;
   const label = labelOf(builder);

@@ -72,6 +72,9 @@ export class FrameBuilder implements PlainTarget {
   /** What was open and read as the choices say, the first line of each kind. */
   readonly open = new Map<Ask, OpenReading>();
   readonly capitals: OpenCapitals[] = [];
+  /** Atoms whose numbers have decimal commas, and what was wrong with the first of them. */
+  readonly commaAtoms = new Set<number>();
+  commaFault: BuilderFault | null = null;
   readonly choices: ReadingChoices;
 
   constructor(countLine: CountLine, line: number, choices: ReadingChoices = {}) {
@@ -154,7 +157,13 @@ export class FrameBuilder implements PlainTarget {
       return true;
     }
     let result = readAtomLine(line.text, this.layout, position, 0);
-    if (result.kind !== "atom") result = this.#readOpen(line, this.layout) ?? result;
+    if (result.kind !== "atom") {
+      const fault = result.kind === "fault" ? result.fault : null;
+      result = this.#readOpen(line, this.layout) ?? result;
+      if (fault && this.commaAtoms.has(this.read)) {
+        this.commaFault ??= { ...fault, line: line.number, atom: this.read + 1 };
+      }
+    }
     if (result.kind === "other") return false;
     if (result.kind === "fault") this.#note({ ...result.fault, line: line.number, atom: this.read + 1 });
     else this.#put(result.atom, line);
@@ -168,6 +177,7 @@ export class FrameBuilder implements PlainTarget {
     const found = readOpenLine(line.text, layout, position, read, choices);
     if (found === null) return null;
     for (const one of found.open) {
+      if (one.ask === "decimal-comma") this.commaAtoms.add(read);
       if (!this.open.has(one.ask)) this.open.set(one.ask, { ...one, line: line.number });
     }
     if (found.capitals) this.capitals.push({ atom: read, ...found.capitals });
@@ -206,6 +216,15 @@ export class FrameBuilder implements PlainTarget {
     }
     if (atom.dummy) this.dummies += 1;
     if (atom.byNumber && this.layout === PLAIN_LAYOUT) this.numbersForSymbols ||= line;
+  }
+
+  /** Commas are decimal ones in all of a frame or in none: beside numbers with points one is a slip (row X22). */
+  checkDecimals(): void {
+    if (this.commaAtoms.size === 0) return;
+    const points = this.positions.some(
+      (value, k) => !Number.isInteger(value) && !this.commaAtoms.has(Math.floor(k / 3)),
+    );
+    if (points && this.commaFault) this.#note(this.commaFault);
   }
 
   /** Commas separate in every line or in none. */
