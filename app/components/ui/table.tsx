@@ -49,7 +49,7 @@ export function Th({ unit, align = "left", sort, onSort, sortTo, className = "",
       aria-sort={
         sort === undefined ? undefined : sort === "up" ? "ascending" : sort === "down" ? "descending" : "none"
       }
-      className={`border-t border-b border-t-rule border-b-rule-2 px-3 py-2 align-bottom text-xs font-medium whitespace-nowrap max-sm:px-2 ${sorted ? "text-ink" : "text-ink-3"} ${ALIGN[align]} ${className}`}
+      className={`border-t border-b border-t-rule border-b-rule-2 px-3 py-2 align-bottom text-xs font-medium whitespace-nowrap max-sm:px-2 max-[24rem]:px-1 ${sorted ? "text-ink" : "text-ink-3"} ${ALIGN[align]} ${className}`}
     >
       {sortTo !== undefined ? (
         <Link
@@ -101,7 +101,7 @@ export function Td({
   const height = tall ? "h-12 max-sm:h-16" : "h-row max-sm:h-11 pointer-coarse:h-11";
   return (
     <td
-      className={`px-3 max-sm:px-2 ${wrap ? "py-2 whitespace-normal" : "whitespace-nowrap"} ${height} ${ALIGN[align]} ${className}`}
+      className={`px-3 max-sm:px-2 max-[24rem]:px-1 ${wrap ? "py-2 whitespace-normal" : "whitespace-nowrap"} ${height} ${ALIGN[align]} ${className}`}
       {...rest}
     />
   );

@@ -102,7 +102,7 @@ function PairRow({
   const shown = selected.length === 2 && frames.every((frame) => selected.includes(frame));
   return (
     <Tr selected={shown}>
-      <Td>
+      <Td className="max-[24rem]:whitespace-normal">
         <TextButton
           printed
           className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
@@ -164,7 +164,7 @@ export function NearestToSelected() {
               const row = rows[index];
               return row ? (
                 <Tr key={index}>
-                  <Td>
+                  <Td className="max-[24rem]:whitespace-normal">
                     <TextButton
                       printed
                       className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
