@@ -186,6 +186,13 @@ test("what is odd about a comment is one message a frame", () => {
   ]);
 });
 
+test("a typographic minus in a number of the comment is told too, in a word it is not", () => {
+  const told = (comment: string) =>
+    read(frame(comment)).frames[0]?.remarks.map(({ code, line }) => [code, line]);
+  expect(told("energy=\u22121.5")).toEqual([["G14", 2]]);
+  expect(told("C\u2212C energy=-1.5")).toEqual([]);
+});
+
 describe("a file that is cut", () => {
   const whole = frame("a") + frame("b");
 

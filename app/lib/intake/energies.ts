@@ -147,7 +147,7 @@ export class EnergyScan {
     for (const [key, entry] of scanned.keyed) {
       const known = tracks.get(key);
       if (entry.number) (known ?? this.#trackOf(tracks, key))?.put(row, entry.number, scanned, extended);
-      else if (known) known.values.set(row, { problem: entry.text.slice(0, 200) });
+      else if (known) known.putText(row, entry.text);
       else this.#texts.put(key, row, entry.text);
     }
   }
@@ -173,7 +173,7 @@ export class EnergyScan {
     if (energy) this.#energyKeys += 1;
     else this.#otherKeys += 1;
     const track = new Track(0);
-    for (const [row, problem] of this.#texts.get(key)?.rows ?? []) track.values.set(row, { problem });
+    for (const [row, text] of this.#texts.get(key)?.rows ?? []) track.putText(row, text);
     tracks.set(key, track);
     return track;
   }

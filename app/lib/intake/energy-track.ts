@@ -1,3 +1,4 @@
+import { quoteFound } from "../text/escape.ts";
 import type { EnergyUnit } from "../units.ts";
 import type { BareDecimal } from "./bare-decimal.ts";
 import type { CommentNumber, ScannedComment } from "./comment-numbers.ts";
@@ -45,6 +46,12 @@ export class Track {
     if (row < SHOWN) this.first[row] = text;
     if (saysRelative(number)) this.relative += 1;
     if (extended && (number.key === "energy" || number.key === "free_energy")) this.customary += 1;
+  }
+
+  /** Text where the number should be. */
+  putText(row: number, text: string): void {
+    this.values.set(row, { problem: text.slice(0, 200) });
+    if (row < SHOWN) this.first[row] = quoteFound(text);
   }
 
   #bind(unit: EnergyUnit, row: number): void {

@@ -109,6 +109,7 @@ export class FrameBuilder implements PlainTarget {
   /** The comment line. */
   takeComment(line: TextLine): void {
     this.comment = line.text;
+    if (line.text.includes("\u2212") && /\u2212[.\d]/.test(line.text)) this.substitutions = line.number;
     this.extended = hasProperties(line.text);
     if (!this.extended && !line.text.includes("=")) {
       this.commentLikeAtom = looksLikeAtom(line.text, PLAIN_LAYOUT);
