@@ -1,13 +1,10 @@
-import { isReady } from "~/services/health.server";
+import { notReadyBecause } from "~/services/health.server";
 
-/** The database answers and its tables are up to date. */
+/** The database answers, its tables are up to date, the disk has room, and jobs are worked on. No figures: anybody reads it. */
 export async function loader() {
-  const ready = await isReady();
-  return new Response(
-    ready ? "ready\n" : "the database does not answer, or its tables are not up to date\n",
-    {
-      status: ready ? 200 : 503,
-      headers: { "content-type": "text/plain; charset=utf-8" },
-    },
-  );
+  const why = await notReadyBecause();
+  return new Response(`${why ?? "ready"}\n`, {
+    status: why === null ? 200 : 503,
+    headers: { "content-type": "text/plain; charset=utf-8" },
+  });
 }

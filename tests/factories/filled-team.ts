@@ -1,7 +1,7 @@
 import { eq } from "drizzle-orm";
 import { db } from "~/db/client.server";
 import { newId } from "~/db/new-id.server";
-import { apiTokens, columns, invitations, links, outsideStructures, plans } from "~/db/schema.server";
+import { apiTokens, columns, invitations, links, outsideStructures, plans, series } from "~/db/schema.server";
 import { invite } from "~/services/people/invite.server";
 import { call } from "../setup/app";
 import { freeze, link, personOf } from "./editions";
@@ -90,6 +90,7 @@ export async function fillTeam(name = "Estuary") {
           .from(outsideStructures)
           .where(eq(outsideStructures.ensembleId, taken.id)),
       ),
+      series: await idIn(db.select({ id: series.id }).from(series).where(eq(series.teamId, team.id))),
       link: await idIn(db.select({ id: links.id }).from(links).where(eq(links.teamId, team.id))),
       invitation: await idIn(
         db.select({ id: invitations.id }).from(invitations).where(eq(invitations.teamId, team.id)),

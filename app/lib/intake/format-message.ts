@@ -21,7 +21,7 @@ export function formatMessage(message: IntakeMessage): string {
 
 /** Lower case after the colon, but for symbols and abbreviations ("XYZ", "C4"). */
 function lowerFirst(text: string): string {
-  return /^[A-Z](?:[a-z]| )/.test(text) ? text.slice(0, 1).toLowerCase() + text.slice(1) : text;
+  return /^[A-Z](?:[a-z](?!\d)| )/.test(text) ? text.slice(0, 1).toLowerCase() + text.slice(1) : text;
 }
 
 function withFound(text: string, found: string): string {

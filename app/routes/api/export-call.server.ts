@@ -6,12 +6,17 @@ import { answerCall, readQuery } from "./answer-call.server";
 
 const CHUNK_CHARACTERS = 65_536;
 
+/** Chunks after which a download asks again whether its taker still may. */
+const CHUNKS_A_LOOK = 16;
+
 /** Text in pieces, made as it is taken; many short pieces go out together. */
-function streamOf(pieces: Iterable<string>): ReadableStream<Uint8Array> {
+function streamOf(pieces: Iterable<string>, still: () => Promise<unknown>): ReadableStream<Uint8Array> {
   const iterator = pieces[Symbol.iterator]();
   const encoder = new TextEncoder();
+  let chunks = 0;
   return new ReadableStream({
-    pull(controller) {
+    async pull(controller) {
+      if (++chunks % CHUNKS_A_LOOK === 0) await still();
       let text = "";
       let next = iterator.next();
       while (!next.done) {
@@ -32,9 +37,12 @@ export function exportCall(make: typeof exportSift, format: ExportFormat) {
       const { siftId } = await accessSift(actor, "read", params.id ?? "");
       const { temperature } = readQuery(url, exportQuerySchema);
       const file = await make({ actor, siftId, format, temperature });
-      return new Response(streamOf(file.pieces), {
-        headers: { "content-type": file.type, "content-disposition": attachment(file.name) },
-      });
+      return new Response(
+        streamOf(file.pieces, () => accessSift(actor, "read", siftId)),
+        {
+          headers: { "content-type": file.type, "content-disposition": attachment(file.name) },
+        },
+      );
     },
   });
 }

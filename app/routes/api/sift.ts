@@ -14,6 +14,8 @@ const answer = answerCall({
       waitSeconds: wait,
       signal: request.signal,
     });
+    // A role may be lost while a call waits.
+    if (wait) await accessSift(actor, "read", siftId);
     return json(sift);
   },
   async DELETE({ actor, params }) {

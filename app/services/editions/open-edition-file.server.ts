@@ -7,6 +7,7 @@ import { writeZip, type ZipEntry } from "../../lib/export/zip.ts";
 import { type Actor, accessEdition } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { whileAllowed } from "../while-allowed.ts";
 import { readFile, readWholeFile } from "./edition-files.server.ts";
 import { findEdition, findEditionFiles } from "./find-edition.server.ts";
 
@@ -89,5 +90,6 @@ export async function exportEdition(options: {
     type: "edition-exported",
     data: { number: grant.number, file: options.name },
   });
-  return file;
+  const still = () => accessEdition(options.actor, "read", options.ensembleId, options.number);
+  return { ...file, chunks: whileAllowed(file.chunks, still) };
 }

@@ -4,6 +4,7 @@ import { ensembleFiles, sources } from "../../db/schema.server.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { whileAllowed } from "../while-allowed.ts";
 import { readSource } from "./source-writer.server.ts";
 
 /** An original file byte for byte, as a stream. */
@@ -25,5 +26,6 @@ export async function loadSource(options: {
   if (grant.role !== "guest") {
     await writeEntry(db, grant, grant, { type: "source-downloaded", data: { file: row.name } });
   }
-  return { name: row.name, bytes: row.bytes, chunks: readSource(row.sourceId) };
+  const still = () => accessEnsemble(options.actor, "read-source", grant.ensembleId);
+  return { name: row.name, bytes: row.bytes, chunks: whileAllowed(readSource(row.sourceId), still) };
 }

@@ -3,12 +3,14 @@ import { db } from "../../db/client.server.ts";
 import { editions, ensembleFiles, logbook, sources } from "../../db/schema.server.ts";
 import type { EditionView } from "../../lib/edition/views.ts";
 import { describeEntry, type LogbookType, logbookEntrySchema } from "../../lib/logbook/entries.ts";
-import type { LinkGrant } from "../auth/access.server.ts";
+import { accessBySecret, type LinkGrant } from "../auth/access.server.ts";
 import { toEditionView } from "../editions/edition-view.server.ts";
 import { findEdition, findPositions, lastVerification } from "../editions/find-edition.server.ts";
 import { type EditionDownload, openEditionFile } from "../editions/open-edition-file.server.ts";
 import { readSource } from "../ensembles/source-writer.server.ts";
 import { notFound } from "../http.server.ts";
+import { whileAllowed } from "../while-allowed.ts";
+import { linkSha } from "./link-secret.ts";
 import { noteOpening, openLink, openLiveLink } from "./open-link.server.ts";
 
 /** A line of the edition's part of the logbook: what was decided and when, by nobody's name. */
@@ -95,12 +97,18 @@ interface Asked {
   address: string;
 }
 
+/** Throws once a link has ended: what it lets out is asked about again while it goes out. */
+async function stillLive(secret: string): Promise<void> {
+  if ((await accessBySecret(linkSha(secret)))?.live !== true) throw notFound();
+}
+
 /** A file of the edition behind a link: results always. */
 export async function openSharedFile(options: Asked & { name: string }): Promise<EditionDownload> {
   const grant = await openLiveLink(options.secret, options.address);
   const edition = await findEdition(grant.teamId, grant.editionId);
   const called = `${edition.content.ensemble.name} edition ${edition.number}`;
-  return openEditionFile(grant, options.name, called);
+  const file = await openEditionFile(grant, options.name, called);
+  return { ...file, chunks: whileAllowed(file.chunks, () => stillLive(options.secret)) };
 }
 
 /** Coordinates of the most populated conformers behind a link. */
@@ -135,6 +143,6 @@ export async function openSharedSource(options: Asked & { position: number }): P
     name: wanted.name,
     type: "application/octet-stream",
     bytes: row.bytes,
-    chunks: readSource(row.sourceId),
+    chunks: whileAllowed(readSource(row.sourceId), () => stillLive(options.secret)),
   };
 }

@@ -3,6 +3,7 @@ import { db } from "../../db/client.server.ts";
 import { pairMatrixBlocks } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
 import type { Actor } from "../auth/access.server.ts";
+import { whileAllowed } from "../while-allowed.ts";
 import { accessMatrix } from "./find-matrix.server.ts";
 
 /** Decimals of an RMSD of 32 bits: what lies beyond is its rounding. */
@@ -18,7 +19,8 @@ export async function exportMatrix(options: { actor: Actor; matrixId: string }) 
   if (status !== "done") {
     throw new DomainError("conflict", "The distances are not there yet", "Wait until they are computed.");
   }
-  return { count: numbers.length, lines: csvLines(options.matrixId, numbers) };
+  const still = () => accessMatrix(options.actor, "read", options.matrixId);
+  return { count: numbers.length, lines: whileAllowed(csvLines(options.matrixId, numbers), still) };
 }
 
 async function* csvLines(matrixId: string, numbers: readonly number[]): AsyncGenerator<string> {
