@@ -25,11 +25,13 @@ const SECRET_KEYS = [
  * @example loggablePath("/reset-password/aF3k") // "/reset-password/***"
  */
 export function loggablePath(path: string): string {
-  return decoded(path.split("?", 1)[0] ?? path)
-    .replace(/^(\/+(?:reset-password|e|invitation|confirm-address|restore-account)\/+)[^/]+/i, "$1***")
-    // The form of a link's secret, wherever somebody pastes it.
-    .replace(/[a-z2-7]{32}/g, "***")
-    .slice(0, 300);
+  return (
+    decoded(path.split("?", 1)[0] ?? path)
+      .replace(/^(\/+(?:reset-password|e|invitation|confirm-address|restore-account)\/+)[^/]+/i, "$1***")
+      // The form of a link's secret, wherever somebody pastes it.
+      .replace(/[a-z2-7]{32}/g, "***")
+      .slice(0, 300)
+  );
 }
 
 /** The router reads "/%65/" as "/e/", so the mask must too. */

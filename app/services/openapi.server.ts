@@ -62,7 +62,8 @@ const formWithFiles = (fields: typeof api.uploadFieldsSchema | typeof api.batchF
           .array(z.string().meta({ format: "binary" }))
           .min(1)
           .meta({
-            description: "XYZ, extended XYZ or SDF, plain, gzip or in a zip archive; frames are numbered on through all files.",
+            description:
+              "XYZ, extended XYZ or SDF, plain, gzip or in a zip archive; frames are numbered on through all files.",
           }),
       }),
     },
@@ -185,15 +186,15 @@ const columnCalls = {
   },
 };
 
-const file = (type: string) => ({
+const file = (type: string, schema: z.ZodType) => ({
   description: "The distinct set as a file",
-  content: { [type]: { schema: z.string() } },
+  content: { [type]: { schema } },
 });
 
-const exportCall = (format: string, type: string) => ({
+const exportCall = (format: string, type: string, schema: z.ZodType = z.string()) => ({
   get: call(`export${format}`, `The distinct set as ${format}`, {
     requestParams: { path, query: api.exportQuerySchema },
-    responses: { "200": file(type), "409": problem("The sift is not done") },
+    responses: { "200": file(type, schema), "409": problem("The sift is not done") },
   }),
 });
 
@@ -246,7 +247,7 @@ const sifts = {
   "/sifts/{id}/export.xyz": exportCall("XYZ", "chemical/x-xyz"),
   "/sifts/{id}/export.sdf": exportCall("SDF", "chemical/x-mdl-sdfile"),
   "/sifts/{id}/export.csv": exportCall("CSV", "text/csv"),
-  "/sifts/{id}/export.json": exportCall("JSON", "application/json"),
+  "/sifts/{id}/export.json": exportCall("JSON", "application/json", api.exportJsonSchema),
 };
 
 const description =

@@ -606,6 +606,48 @@ export const comparisonSchema = z
   .meta({ id: "Comparison" });
 export type ComparisonAnswer = z.infer<typeof comparisonSchema>;
 
+/** What export.json holds; more may be added. */
+export const exportJsonSchema = z
+  .looseObject({
+    schema: z.literal("lowlying-distinct-set"),
+    schemaVersion: z.number().int(),
+    caution: z.string(),
+    constants: z.string(),
+    units: z.record(z.string(), z.string().nullable()),
+    ensemble: z.object({ id, name: z.string(), formula: z.string() }),
+    elements: z.array(z.number().int()).meta({ description: "Atomic numbers in the order of the ensemble." }),
+    isotopes: z.array(z.number().int()).nullable(),
+    bonds: z.array(z.array(z.number().int())).meta({ description: "Pairs of atoms, from 1." }),
+    columns: z.array(z.object({ name: z.string(), unit: z.string().nullable() })),
+    sources: z.array(z.looseObject({ name: z.string(), sha256: z.string() })),
+    level: z.looseObject({ name: z.string(), unit: z.string(), energyKind: z.string() }).nullable(),
+    recipe: siftRecipeSchema,
+    temperature: z.number(),
+    weights: z.enum(["copies", "degeneracy"]).nullable(),
+    conformers: z.array(
+      z.looseObject({
+        frame: frameNumber,
+        label: z.string().nullable(),
+        energy: z.number().nullable().meta({ description: "kcal/mol" }),
+        sourceEnergy: z
+          .number()
+          .nullable()
+          .meta({ description: "As the source has it, in the level's unit." }),
+        relativeEnergy: z.number().nullable(),
+        population: z.number().nullable(),
+        degeneracy: z.number().int(),
+        symmetryNumber: z.number().int().nullable(),
+        copies: z.number().nullable(),
+        mirrorRmsd: z.number(),
+        found: z.number().int(),
+        source: z.string().nullable(),
+        values: z.array(z.number().nullable()).meta({ description: "In the order of columns." }),
+        positions: z.array(z.array(z.number())).meta({ description: "[atom][xyz] in Å." }),
+      }),
+    ),
+  })
+  .meta({ id: "DistinctSet", description: "The distinct set with its structures." });
+
 export const exportQuerySchema = z.object({ temperature });
 
 export const populationsSchema = z

@@ -173,7 +173,13 @@ export function averageOf(moments: Moments, populations: ArrayLike<number>): Ave
   const resultant = circular ? Math.min(1, Math.hypot(first, second) / share) : null;
   return {
     value,
-    spread: resultant === null ? spreadOf(moments, populations, share) : circularSpread(resultant),
+    // About a mean that is undefined there is no spread either: at R = 0 its formula gives the logarithm of a rounding.
+    spread:
+      resultant === null
+        ? spreadOf(moments, populations, share)
+        : value === null
+          ? null
+          : circularSpread(resultant),
     covered,
     state: value === null ? "undefined" : "averaged",
     resultant,

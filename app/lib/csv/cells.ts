@@ -27,6 +27,9 @@ export function isMissing(cell: string): boolean {
 /** What may stand behind the number in one cell: "12.3 %", "4.5 ppm". */
 const UNIT_BEHIND = /^\s*([%°‰]|[A-Za-zÅµ°][A-Za-zÅµ°/0-9^.*· -]{0,19})$/;
 
+/** No number with its unit is longer; the patterns below would look at a longer text too often. */
+const MOST_CHARACTERS = 200;
+
 /**
  * Reads one cell of a numeric column.
  *
@@ -37,6 +40,7 @@ const UNIT_BEHIND = /^\s*([%°‰]|[A-Za-zÅµ°][A-Za-zÅµ°/0-9^.*· -]{0,19}
 export function readCell(written: string, style: NumberStyle | null): CellReading {
   const text = plainBlanksAndMinus(written).trim();
   if (isMissing(text)) return MISSING_CELL;
+  if (text.length > MOST_CHARACTERS) return TEXT_CELL;
   const plain = style === null || style === "point" ? text : asPlain(text, style);
   if (plain !== null) {
     const value = parseNumber(plain);

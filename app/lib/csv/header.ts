@@ -12,6 +12,8 @@ export interface ColumnHeader {
   stated: boolean;
 }
 
+/** Longer headers are read as they stand: the patterns below would look at them too often. */
+const MOST_CHARACTERS = 500;
 const SQUARE = /^(.*?)\s*\[([^[\]]*)\]\s*$/s;
 const ROUND = /^(.*\S)(\s*)\(([^()]{1,30})\)$/s;
 
@@ -25,6 +27,7 @@ const ROUND = /^(.*\S)(\s*)\(([^()]{1,30})\)$/s;
  */
 export function readHeader(written: string): ColumnHeader {
   const text = written.trim();
+  if (text.length > MOST_CHARACTERS) return plain(text);
   const square = SQUARE.exec(text);
   if (square) {
     const [, name = "", unitText = ""] = square;
@@ -94,6 +97,7 @@ const PER_ATOM =
  * @example readAtom("H12") // { atom: 12, element: 1, quantity: null }
  */
 export function readAtom(name: string): NamedAtom | null {
+  if (name.length > MOST_CHARACTERS) return null;
   const alone = /^([A-Z][a-z]?)[ _]?(\d{1,5})$/.exec(name);
   if (alone) return named(alone[1], alone[2], null);
   const behind = /^(.*?[A-Za-z])[ _:#.-]+([A-Z][a-z]?)[ _]?(\d{1,5})$/.exec(name);

@@ -67,6 +67,8 @@ export interface PlanContext {
   elements: ArrayLike<number>;
   /** Line of the header. */
   headerLine: number;
+  /** Kinds of columns that are to be replaced, by name: what a column is stays, whatever its unit would say. */
+  kinds?: ReadonlyMap<string, "energy" | "property">;
 }
 
 /** What a column is by its header and what was said of it, before its numbers are placed. */
@@ -181,10 +183,10 @@ export function draftColumn(
   const read = readHeader(header);
   const unit = unitOf(read, raw, choice);
   checkCellUnits(header, unit, raw, context);
-  const stated = choice?.kind ?? answers.kind;
+  const name = cut((choice?.name ?? read.name).trim() || `column ${column}`);
+  const stated = choice?.kind ?? answers.kind ?? context.kinds?.get(name);
   const byUnit = saysEnergy(unit.known) || (unit.text === null && answers.energyUnit !== null && lone);
   const kind = stated ?? (byUnit ? "energy" : "property");
-  const name = cut((choice?.name ?? read.name).trim() || `column ${column}`);
   const draft: DraftColumn = {
     column,
     header,

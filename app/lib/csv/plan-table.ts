@@ -21,6 +21,8 @@ import {
 
 export interface TableFacts extends FrameFacts {
   elements: ArrayLike<number>;
+  /** Kinds of the columns that the table may replace, by name. */
+  kinds?: ReadonlyMap<string, "energy" | "property">;
 }
 
 export interface TableAnswers extends KeyAnswers, ColumnAnswers {
@@ -269,7 +271,7 @@ function nameApart(drafts: readonly DraftColumn[], file: string): IntakeMessage[
  */
 export function planTable(table: RawTable, facts: TableFacts, answers: TableAnswers): TablePlan {
   const { headers, messages: named } = nameHeaders(table.header, table.file);
-  const context = { file: table.file, elements: facts.elements, headerLine: 1 };
+  const context = { file: table.file, elements: facts.elements, headerLine: 1, kinds: facts.kinds };
   const match = matchRows(
     {
       file: table.file,

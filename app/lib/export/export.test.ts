@@ -59,6 +59,7 @@ function setOf(conformers: readonly ExportConformer[], over: Partial<ExportSet> 
   };
 }
 
+const BONDS = [0, 1, 0, 2];
 const WATER = [0, 0, 0.1173, 0, 0.7572, -0.4692, 0, -0.7572, -0.4692];
 
 function readBack(text: string, remarks: readonly string[] = []): XyzFrame[] {
@@ -228,10 +229,10 @@ describe("CSV", () => {
 describe("JSON", () => {
   test("carries schema version, recipe, units, checksums, constants, caution and every conformer", () => {
     const set = setOf([conformer(1), conformer(12, { upperBound: true })]);
-    const parsed: unknown = JSON.parse([...writeJson(set)].join(""));
+    const parsed: unknown = JSON.parse([...writeJson(set, BONDS, () => WATER, [])].join(""));
     expect(parsed).toMatchObject({
       schema: "lowlying-distinct-set",
-      schemaVersion: 2,
+      schemaVersion: 3,
       caution: CAUTION,
       constants: "CODATA 2022",
       units: { energy: "kcal/mol", relativeEnergy: "kcal/mol", population: "fraction" },
@@ -250,14 +251,41 @@ describe("JSON", () => {
     const set = setOf([conformer(1, { energy: -2 })], {
       level: { name: "G", unit: "kJ/mol", energyKind: "free" },
     });
-    expect(JSON.parse([...writeJson(set)].join(""))).toMatchObject({
+    expect(JSON.parse([...writeJson(set, BONDS, () => WATER, [])].join(""))).toMatchObject({
       units: { energy: "kcal/mol", sourceEnergy: "kJ/mol" },
       level: { unit: "kJ/mol" },
       conformers: [{ energy: -2 / 4.184, sourceEnergy: -2 }],
     });
   });
 
+  test("reads back as structures with the values of all columns", () => {
+    const dipole = { name: "dipole", unit: "D", values: [1.85, null] };
+    const text = [...writeJson(setOf([conformer(1), conformer(2)]), BONDS, () => WATER, [dipole])].join("");
+    expect(JSON.parse(text)).toMatchObject({
+      elements: [8, 1, 1],
+      // Atoms count from 1 for whoever reads it.
+      bonds: [
+        [1, 2],
+        [1, 3],
+      ],
+      columns: [{ name: "dipole", unit: "D" }],
+      conformers: [
+        {
+          values: [1.85],
+          positions: [
+            [0, 0, 0.1173],
+            [0, 0.7572, -0.4692],
+            [0, -0.7572, -0.4692],
+          ],
+        },
+        { values: [null] },
+      ],
+    });
+  });
+
   test("is valid without conformers", () => {
-    expect(JSON.parse([...writeJson(setOf([]))].join(""))).toMatchObject({ conformers: [] });
+    expect(JSON.parse([...writeJson(setOf([]), BONDS, () => WATER, [])].join(""))).toMatchObject({
+      conformers: [],
+    });
   });
 });

@@ -1,8 +1,12 @@
 import { CONSTANTS_YEAR, kcalPer } from "../units.ts";
+import type { CsvColumn } from "./csv.ts";
 import { type ExportSet, sourceOf } from "./export-set.ts";
 
-/** 2: `energy` in kcal/mol, the source's own number beside it as `sourceEnergy`. */
-export const EXPORT_SCHEMA_VERSION = 2;
+/**
+ * 2: `energy` in kcal/mol, the source's own number beside it as `sourceEnergy`. 3: bonds, columns, and of each conformer
+ * its coordinates and values, so that the file reads back as structures.
+ */
+export const EXPORT_SCHEMA_VERSION = 3;
 
 /** Goes with every list of populations. */
 export const CAUTION =
@@ -11,11 +15,20 @@ export const CAUTION =
 
 /**
  * The distinct set as JSON, in pieces: recipe, units, checksums of the sources and constants first, then one
- * conformer a line. Lengths Å, energies kcal/mol; `sourceEnergy` is the number as the source has it, in its unit.
+ * conformer a line. Lengths Å, energies kcal/mol; `sourceEnergy` is the number as the source has it, in its unit, and
+ * so are the values of the columns.
  *
- * @example JSON.parse([...writeJson(set)].join("")).conformers.length
+ * @param bonds pairs of atoms, from 0, as the graph has them
+ * @param positions coordinates of a frame, [atom][xyz] in Å
+ * @param quantities all columns of the ensemble over the conformers of the set, in their order
+ * @example JSON.parse([...writeJson(set, bonds, positions, [])].join("")).conformers.length
  */
-export function* writeJson(set: ExportSet): Generator<string> {
+export function* writeJson(
+  set: ExportSet,
+  bonds: ArrayLike<number>,
+  positions: (frame: number) => ArrayLike<number>,
+  quantities: readonly CsvColumn[],
+): Generator<string> {
   const head = {
     schema: "lowlying-distinct-set",
     schemaVersion: EXPORT_SCHEMA_VERSION,
@@ -28,10 +41,13 @@ export function* writeJson(set: ExportSet): Generator<string> {
       mirrorRmsd: "Å",
       population: "fraction",
       temperature: "K",
+      positions: "Å",
     },
     ensemble: set.ensemble,
     elements: Array.from(set.elements),
     isotopes: set.isotopes && Array.from(set.isotopes),
+    bonds: pairsFromOne(bonds),
+    columns: quantities.map(({ name, unit }) => ({ name, unit })),
     sources: set.sources,
     level: set.level,
     recipe: set.recipe,
@@ -68,8 +84,22 @@ export function* writeJson(set: ExportSet): Generator<string> {
       mirrorRmsd,
       found,
     };
+    const values = quantities.map((column) => column.values[k] ?? null);
     const atoms = conformer.mapping ? { sourceAtoms: conformer.mapping.map((atom) => atom + 1) } : {};
-    yield `${k === 0 ? "" : ","}\n    ${JSON.stringify({ ...line, ...bound, source, ...atoms })}`;
+    yield `${k === 0 ? "" : ","}\n    ${JSON.stringify({ ...line, ...bound, source, ...atoms, values, positions: triples(positions(frame)) })}`;
   }
   yield "\n  ]\n}\n";
+}
+
+/** Bonds as people count atoms, from 1. */
+function pairsFromOne(bonds: ArrayLike<number>): [number, number][] {
+  return Array.from({ length: bonds.length / 2 }, (_, k) => [bonds[2 * k]! + 1, bonds[2 * k + 1]! + 1]);
+}
+
+function triples(positions: ArrayLike<number>): [number, number, number][] {
+  return Array.from({ length: positions.length / 3 }, (_, atom) => [
+    positions[3 * atom]!,
+    positions[3 * atom + 1]!,
+    positions[3 * atom + 2]!,
+  ]);
 }

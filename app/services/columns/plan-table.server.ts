@@ -1,6 +1,6 @@
 import { and, eq, isNotNull } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
-import { frames } from "../../db/schema.server.ts";
+import { columns, frames } from "../../db/schema.server.ts";
 import type { ColumnFields } from "../../lib/api/schemas.ts";
 import { DELIMITER_NAMES } from "../../lib/csv/dialect.ts";
 import type { MatchedRows } from "../../lib/csv/match-rows.ts";
@@ -24,6 +24,15 @@ async function labelsOf(ensembleId: string): Promise<Map<string, number[]>> {
     if (name !== "") labels.set(name, [...(labels.get(name) ?? []), number]);
   }
   return labels;
+}
+
+/** What the columns of an ensemble are, by name. */
+async function kindsOf(ensembleId: string): Promise<Map<string, "energy" | "property">> {
+  const rows = await db
+    .select({ name: columns.name, kind: columns.kind })
+    .from(columns)
+    .where(eq(columns.ensembleId, ensembleId));
+  return new Map(rows.map(({ name, kind }) => [name, kind]));
 }
 
 /** The numbers that a table may fill at most: 64 MB of them. */
@@ -58,6 +67,7 @@ export async function planTableFile(
     strip: target.strip,
     labels: await labelsOf(target.ensembleId),
     elements: target.graph.elements,
+    kinds: fields.replace ? await kindsOf(target.ensembleId) : undefined,
   };
   const plan = planTable(table, facts, answers);
   const origin = `table:${name}`;

@@ -142,12 +142,12 @@ async function piecesOf(
   { set, ensemble, columns: all, indices }: Awaited<ReturnType<typeof collect>>,
   format: ExportFormat,
 ): Promise<Iterable<string>> {
-  if (format === "json") return writeJson(set);
   const quantities = csvColumns(all, ensemble.frames, set);
   if (format === "csv") return writeCsv(set, quantities);
   const positions = await positionsBy(set, ensemble, indices);
   if (format === "xyz") return writeXyz(set, positions);
   const graph = unpackMolecule(ensemble);
+  if (format === "json") return writeJson(set, graph.bonds, positions, quantities);
   // The level of the sift goes along as the energy of each record.
   const further = quantities.filter((_, k) => all[k]?.name !== set.level?.name);
   return writeSdf(set, { bonds: graph.bonds, orders: ordersOf(ensemble, graph) }, positions, further);
