@@ -141,7 +141,11 @@ function headText(head: Uint8Array): string {
   return latin1(bytes, 0, bytes.length);
 }
 
+/** Reactions and other files of the family of MOL: their reader says what they are (row S24). */
+const MOL_FAMILY = /^\$(?:RXN|MDL|RDFILE|RIREG|MFMT)/;
+
 function textFormat(lines: readonly string[]): Sniffed["format"] {
+  if (MOL_FAMILY.test(lines[0] ?? "")) return "sdf";
   const first = lines.find((line) => line.trim() !== "") ?? "";
   // Columns 34 to 39 of the fourth line hold the version; older files have none but keep the columns of the counts.
   const counts = lines[3] ?? "";

@@ -54,6 +54,10 @@ describe("encodings", () => {
 });
 
 describe("sniffing", () => {
+  it("leaves reactions and other files of the family of MOL to their reader, which says what they are (S24)", () => {
+    expect(sniff(new TextEncoder().encode("$RXN\n\n\n\n  1  1\n$MOL\n"), "step.rxn").format).toBe("sdf");
+  });
+
   test("tells the three formats apart by content", () => {
     expect(sniff(bytes("3\nwater\nO 0 0 0\n"), "a.txt").format).toBe("xyz");
     expect(sniff(bytes("name;E\na;1\nb;2\n"), "a.txt").format).toBe("csv");

@@ -26,6 +26,9 @@ function formatOf(
       hint: "Unpack it and send the file itself.",
     });
   }
+  if (found.refusal?.code === "G06" && byName) {
+    throw new IntakeRejection({ code: "G06", file: name, message: "The table has no rows." });
+  }
   if (found.refusal && !(byName && found.refusal.code === "G10")) {
     throw new IntakeRejection({ file: name, ...found.refusal });
   }
