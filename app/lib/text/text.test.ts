@@ -54,8 +54,8 @@ describe("encodings", () => {
 });
 
 describe("sniffing", () => {
-  it("leaves reactions and other files of the family of MOL to their reader, which says what they are (S24)", () => {
-    expect(sniff(new TextEncoder().encode("$RXN\n\n\n\n  1  1\n$MOL\n"), "step.rxn").format).toBe("sdf");
+  test("leaves reactions and other files of the family of MOL to their reader, which says what they are (S24)", () => {
+    expect(sniff(bytes("$RXN\n\n\n\n  1  1\n$MOL\n"), "step.rxn").format).toBe("sdf");
   });
 
   test("tells the three formats apart by content", () => {
