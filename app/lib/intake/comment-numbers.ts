@@ -148,14 +148,21 @@ function wordsBehind(tokens: readonly Token[], at: number): readonly string[] {
   for (let k = at + 1; k <= at + 2; k++) {
     const token = tokens[k];
     if (token?.kind !== "word" || tokens[k + 1]?.kind === "sign") break;
-    behind.push(token.text.replace(/[)\]},;]+$/, ""));
+    behind.push(withoutTail(token.text, ")]},;"));
   }
   return behind;
 }
 
+/** Without any of these signs at its end; a pattern would begin anew at each of them. */
+function withoutTail(text: string, signs: string): string {
+  let end = text.length;
+  while (end > 0 && signs.includes(text.charAt(end - 1))) end -= 1;
+  return text.slice(0, end);
+}
+
 /** A whole word that is a number, brackets and closing punctuation aside. */
 function readWhole(word: string): { text: string; value: number | null; unit: EnergyUnit | null } | null {
-  const text = word.replace(/^[([{<'"]+/, "").replace(/[)\]}>,;'"]+$/, "");
+  const text = withoutTail(word.replace(/^[([{<'"]+/, ""), ")]}>,;'\"");
   const length = numberLength(text, 0);
   if (length === 0) return null;
   const value = parseNumber(text.slice(0, length));
