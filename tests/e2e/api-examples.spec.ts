@@ -3,7 +3,7 @@ import { copyFileSync, mkdtempSync, readFileSync, rmSync, writeFileSync } from "
 import os from "node:os";
 import path from "node:path";
 import { promisify } from "node:util";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { expect, expectAccessible, hydrated, signUp, test } from "./base";
 
 // The programs that the reference page gives people to copy, run as they stand there, against the running server.
 
@@ -17,9 +17,9 @@ test.beforeEach(() => {
 });
 test.afterEach(() => rmSync(folder, { recursive: true, force: true }));
 
-/** Makes a token by the page, as a person would, and keeps it in a file as the page says. */
-async function makeToken(page: Parameters<typeof signIn>[0], name: string): Promise<string> {
-  await signIn(page);
+/** Makes a token by the page, as a person would in a team of their own, and keeps it in a file as the page says. */
+async function makeToken(page: Parameters<typeof signUp>[0], name: string): Promise<string> {
+  await signUp(page, "Ada Quist", `t${Math.random().toString(36).slice(2, 10)}@lab.example`);
   await page.goto(`${page.url()}/tokens`);
   await hydrated(page);
   await page.getByLabel("What it is for").fill(name);

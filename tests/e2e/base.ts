@@ -5,7 +5,8 @@ import { test as base, expect, type Page } from "@playwright/test";
 export const DEMO_PASSWORD = "walk-through-the-house";
 
 /** Answers that a test provokes; the browser writes each of them to the console. */
-const PROVOKED = /^Failed to load resource: the server responded with a status of (4\d\d|503)/;
+const PROVOKED =
+  /^Failed to load resource: (the server responded with a status of (4\d\d|503)|net::ERR_FAILED)/;
 
 /**
  * `test` whose page fails it on a breach of the content security policy, an error of a script, an error in the
