@@ -45,7 +45,7 @@ describe("the environment", () => {
     );
   });
 
-  it("names every bad setting at once and tells no value", () => {
+  it("names every bad setting at once and tells no value (security G05)", () => {
     const said = refusal({
       PORT: "99999",
       DATABASE_URL: "postgres://u:hunter2@db/x",
@@ -72,12 +72,12 @@ describe("the environment", () => {
     expect(refusal({})).toContain("DATABASE_URL");
   });
 
-  it("stops in production without a secret, and says how to mend it", () => {
+  it("stops in production without a secret, and says how to mend it (security G05)", () => {
     expect(refusal(PUBLIC)).toMatch(/SESSION_SECRET is missing; .*32 random characters/);
     expect(readEnv({ ...PUBLIC, SESSION_SECRET: SECRET })).toMatchObject({ public: true, secure: true });
   });
 
-  it("accepts no weaker password hashes and no unsafe database in production", () => {
+  it("accepts no weaker password hashes and no unsafe database in production (A01, F01)", () => {
     const said = refusal({
       ...PUBLIC,
       SESSION_SECRET: SECRET,
@@ -93,7 +93,7 @@ describe("the environment", () => {
     expect(env.public).toBe(false);
   });
 
-  it("holds two keys at once for rotation", () => {
+  it("holds two keys at once for rotation (security G05)", () => {
     const rotated = readEnv({ DATABASE_URL, SESSION_SECRET: `${SECRET}, x${SECRET}` });
     expect(rotated.SESSION_SECRET).toEqual([SECRET, `x${SECRET}`]);
     expect(refusal({ DATABASE_URL, SESSION_SECRET: `${SECRET},short` })).toContain("SESSION_SECRET");

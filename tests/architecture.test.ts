@@ -217,7 +217,7 @@ describe("the table of routes", () => {
     expect(root).toContain('route("*", "routes/api/not-found.ts")');
   });
 
-  it("leaves access to the services: every route with data calls one, or shows none", () => {
+  it("leaves access to the services: every route with data calls one, or shows none (C01)", () => {
     /** Routes that show nothing of any team, each with its reason. */
     const OPEN = new Set([
       "routes/methods.tsx", // reference page, no data

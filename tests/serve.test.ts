@@ -255,7 +255,7 @@ describe("requests", () => {
     expect(answer.headers.getSetCookie()).toEqual(["a=1", "b=2"]);
   });
 
-  it("name the caller by the peer, or by the proxy in front where one is trusted", async () => {
+  it("name the caller by the peer, or by the proxy in front where one is trusted (security G07)", async () => {
     handle = async (_request, context) => new Response(context.address);
     const ask = async () => (await fetch(base, { headers: { "x-forwarded-for": "192.0.2.9" } })).text();
     expect(await ask()).toBe("127.0.0.1");
@@ -368,7 +368,7 @@ describe("slow senders", () => {
     return state;
   };
 
-  it("of files are cut after a span without enough bytes, and told", async () => {
+  it("of files are cut after a span without enough bytes, and told (security E03)", async () => {
     const seen = reading();
     const slow = slowPost("/upload", 100_000);
     slow.socket.write("x");
@@ -425,7 +425,7 @@ describe("slow senders", () => {
     open.socket.destroy();
   });
 
-  it("of small bodies have a time in all", async () => {
+  it("of small bodies have a time in all (security E03)", async () => {
     const seen = reading();
     const slow = slowPost("/small", 900);
     slow.socket.write("x".repeat(800));
@@ -437,7 +437,7 @@ describe("slow senders", () => {
     expect(text).toContain("did not come within 30 s");
   });
 
-  it("do not stand in the way of others", async () => {
+  it("do not stand in the way of others (security E03)", async () => {
     reading();
     const slow = Array.from({ length: 60 }, () => slowPost("/upload", 100_000));
     for (const { socket } of slow) socket.write("x");

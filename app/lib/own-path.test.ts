@@ -31,7 +31,7 @@ describe("ownPath", () => {
     undefined,
     7,
     `/${"a".repeat(3000)}`,
-  ])("refuses %j", (target) => {
+  ])("refuses %j (B07)", (target) => {
     expect(ownPath(target, "/fallback")).toBe("/fallback");
   });
 });

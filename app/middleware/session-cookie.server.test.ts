@@ -16,7 +16,7 @@ afterEach(() => {
 });
 
 describe("the cookie of a session", () => {
-  it("is bound to the host and to https where that is used", async () => {
+  it("is bound to the host and to https where that is used (A06)", async () => {
     const { writeSessionCookie } = await cookieWith({ APP_ORIGIN: "https://lowlying.lab.example" });
     const line = await writeSessionCookie({ secret: "s", stay: false });
     expect(line).toMatch(/^__Host-lowlying=/);
@@ -30,7 +30,7 @@ describe("the cookie of a session", () => {
     expect(line).not.toContain("Secure");
   });
 
-  it("is accepted under two keys while they are changed, under one no more", async () => {
+  it("is accepted under two keys while they are changed, under one no more (security G05)", async () => {
     const before = await cookieWith({ SESSION_SECRET: OLD });
     const cookie = (await before.writeSessionCookie({ secret: "s", stay: false })).split(";", 1)[0] ?? "";
     const during = await cookieWith({ SESSION_SECRET: `${NEW}, ${OLD}` });

@@ -21,7 +21,7 @@ describe("names of downloads", () => {
     expect(cut.endsWith("n.xyz.gz")).toBe(true);
   });
 
-  it("writes a header that holds only ASCII, with the real name beside it (RFC 6266, RFC 8187)", () => {
+  it("writes a header that holds only ASCII, with the real name beside it (RFC 6266, RFC 8187) (security E04)", () => {
     const header = attachment("Größe (1)'.csv");
     expect(header).toBe(
       "attachment; filename=\"Gr__e (1)'.csv\"; filename*=UTF-8''Gr%C3%B6%C3%9Fe%20%281%29%27.csv",

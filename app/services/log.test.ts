@@ -22,7 +22,7 @@ function logged(write: (log: ReturnType<typeof makeLog>) => void): {
 }
 
 describe("the log", () => {
-  it("writes one JSON object a line, whatever line breaks a value holds", () => {
+  it("writes one JSON object a line, whatever line breaks a value holds (security G02)", () => {
     const { lines } = logged((log) =>
       log.info({ found: 'a\n{"level":"info","msg":"forged"}\r\n\u2028b' }, "one"),
     );
@@ -31,7 +31,7 @@ describe("the log", () => {
     expect(lines[0]?.time).toMatch(/^\d{4}-.*Z$/);
   });
 
-  it("masks secrets and what people and compounds are called, two levels deep", () => {
+  it("masks secrets and what people and compounds are called, two levels deep (security G01)", () => {
     const { text } = logged((log) =>
       log.info({
         password: "MARKER",
@@ -43,7 +43,7 @@ describe("the log", () => {
     expect(text).not.toContain("MARKER");
   });
 
-  it("tells of a database failure without the statement and its values", () => {
+  it("tells of a database failure without the statement and its values (security G02)", () => {
     const cause = Object.assign(new Error("Duplicate entry 'MARKER' for key"), {
       code: "ER_DUP_ENTRY",
       sql: "insert into users values ('MARKER')",

@@ -21,7 +21,7 @@ const MARKERS = [
   "tosylamide",
 ];
 
-test("the server's log is JSON and holds no secrets, names or structures", async () => {
+test("the server's log is JSON and holds no secrets, names or structures (security G01)", async () => {
   const lines = readFileSync(process.env.E2E_LOG ?? "", "utf8")
     .trimEnd()
     .split("\n");

@@ -228,7 +228,7 @@ describe("a grant", () => {
 });
 
 describe("API tokens", () => {
-  it("keep only their SHA-256 and a few characters to know them by", async () => {
+  it("keep only their SHA-256 and a few characters to know them by (D07)", async () => {
     const team = await makeTeam();
     const user = await makeMember(team.id, "analyst");
     const made = await makeToken({ userId: user.id, teamId: team.id, name: "n", scope: "full", days: 1 });
@@ -240,7 +240,7 @@ describe("API tokens", () => {
     expect(JSON.stringify(stored)).not.toContain(made.token);
   });
 
-  it("end on their day, when revoked, and with their user's membership or account", async () => {
+  it("end on their day, when revoked, and with their user's membership or account (D07)", async () => {
     const team = await makeTeam();
     const begun = new Date("2026-03-01T00:00:00Z");
     const make = async () => {

@@ -159,7 +159,7 @@ describe("bodies", () => {
       headers: { "content-type": type },
     });
 
-  it("of another type are 415, broken ones 400, wrong ones 422, unknown fields too", async () => {
+  it("of another type are 415, broken ones 400, wrong ones 422, unknown fields too (C04)", async () => {
     expect((await send('{"level":"A"}', "text/plain")).status).toBe(415);
     expect((await send('{"level":"A"}', "application/jsonp")).status).toBe(415);
     expect((await send('{"level":')).status).toBe(400);
@@ -226,7 +226,7 @@ it("answers problem documents for addresses that do not exist, whatever the meth
   }
 });
 
-it("never caches, and never lets a browser guess types", async () => {
+it("never caches, and never lets a browser guess types (B08)", async () => {
   const response = await call(on("/ensembles/:id"), { token: tokens.analyst });
   expect(response.headers.get("cache-control")).toBe("no-store");
   expect(response.headers.get("x-content-type-options")).toBe("nosniff");

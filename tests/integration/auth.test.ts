@@ -55,7 +55,7 @@ describe("signing in", () => {
     expect((await signIn(`  ${user.email.toUpperCase()} `, PASSWORD)).status).toBe(303);
   });
 
-  it("leads back to the page that was wanted, and nowhere else", async () => {
+  it("leads back to the page that was wanted, and nowhere else (B07)", async () => {
     const user = await makeUser();
     const go = async (to: string) => {
       const form = { email: user.email, password: PASSWORD };
@@ -68,7 +68,7 @@ describe("signing in", () => {
     }
   });
 
-  it("says the same of a wrong password and of an unknown address", async () => {
+  it("says the same of a wrong password and of an unknown address (A03)", async () => {
     const user = await makeUser();
     const wrong = await signIn(user.email, "another one entirely");
     const unknown = await signIn("nobody@lab.example", "another one entirely");
@@ -79,7 +79,7 @@ describe("signing in", () => {
     expect(await alertOf(unknown)).toBe(said);
   });
 
-  it("hashes as much for an unknown address as for a known one", async () => {
+  it("hashes as much for an unknown address as for a known one (A03)", async () => {
     const user = await makeUser();
     await signIn("nobody@lab.example", "a first one, for the stand-in hash");
     const verify = vi.spyOn(argon2, "verify");
@@ -97,7 +97,7 @@ describe("signing in", () => {
     expect(page).not.toContain("MARKER");
   });
 
-  it("keeps hashes of argon2id with 19,456 KiB, 2 passes and 1 lane, and renews weaker ones", async () => {
+  it("keeps hashes of argon2id with 19,456 KiB, 2 passes and 1 lane, and renews weaker ones (A01)", async () => {
     const user = await makeUser();
     const hashOf = async () =>
       (await db.select({ hash: users.passwordHash }).from(users).where(eq(users.id, user.id)))[0]?.hash;
@@ -108,7 +108,7 @@ describe("signing in", () => {
     expect((await signIn(user.email, PASSWORD)).status).toBe(303);
   });
 
-  it("lets nobody in whose account is disabled, and ends open sessions at once", async () => {
+  it("lets nobody in whose account is disabled, and ends open sessions at once (A05)", async () => {
     const user = await makeUser();
     const cookie = await signedIn(user.id);
     await db.update(users).set({ disabledAt: new Date() }).where(eq(users.id, user.id));
@@ -116,7 +116,7 @@ describe("signing in", () => {
     expect((await call("/teams", { cookie })).headers.get("location")).toContain("/login");
   });
 
-  it("knows no demo account in production", async () => {
+  it("knows no demo account in production (A09)", async () => {
     const user = await makeUser();
     await db.update(users).set({ demo: true }).where(eq(users.id, user.id));
     withEnv({ public: true });
@@ -127,7 +127,7 @@ describe("signing in", () => {
 describe("wrong passwords", () => {
   const WRONG = "another one entirely";
 
-  it("rest the account for that range after ten, for its owner elsewhere nothing changes", async () => {
+  it("rest the account for that range after ten, for its owner elsewhere nothing changes (A04)", async () => {
     const user = await makeUser();
     for (let tries = 0; tries < 10; tries++) {
       expect((await signIn(user.email, WRONG, { address: "192.0.2.5" })).status).toBe(422);
@@ -145,7 +145,7 @@ describe("wrong passwords", () => {
     expect((await signIn("nobody@lab.example", WRONG)).status).toBe(429);
   });
 
-  it("are counted when they come all at once", async () => {
+  it("are counted when they come all at once (A04)", async () => {
     const user = await makeUser();
     const answers = await Promise.all(Array.from({ length: 16 }, () => signIn(user.email, WRONG)));
     const statuses = answers.map((answer) => answer.status).sort();
@@ -176,7 +176,7 @@ describe("wrong passwords", () => {
 });
 
 describe("sessions", () => {
-  it("keep only the SHA-256 of their secret", async () => {
+  it("keep only the SHA-256 of their secret (A05)", async () => {
     const user = await makeUser();
     const secret = await startSession({ userId: user.id, stay: false, userAgent: null });
     expect(Buffer.from(secret, "base64url")).toHaveLength(32);
@@ -185,7 +185,7 @@ describe("sessions", () => {
     expect(JSON.stringify(row)).not.toContain(secret);
   });
 
-  it("send a cookie for scripts' eyes closed, bound to the site and gone with the browser", async () => {
+  it("send a cookie for scripts' eyes closed, bound to the site and gone with the browser (A06)", async () => {
     const user = await makeUser();
     const [line = ""] = (await signIn(user.email, PASSWORD)).headers.getSetCookie();
     expect(line).toMatch(/^lowlying-3000=/);
@@ -201,7 +201,7 @@ describe("sessions", () => {
     expect(answer.headers.getSetCookie()[0]).toContain("Max-Age=2592000");
   });
 
-  it("end after 12 hours without use", async () => {
+  it("end after 12 hours without use (A06)", async () => {
     const user = await makeUser();
     const begun = new Date("2026-03-01T08:00:00Z");
     const secret = await startSession({ userId: user.id, stay: false, userAgent: null, now: begun });
@@ -212,7 +212,7 @@ describe("sessions", () => {
     expect(await findSession(secret, later(23.8 + 12.1))).toBeNull();
   });
 
-  it("end after 30 days, used or not, stayed or not", async () => {
+  it("end after 30 days, used or not, stayed or not (A06)", async () => {
     const user = await makeUser();
     const begun = new Date("2026-03-01T08:00:00Z");
     const later = (days: number) => new Date(begun.getTime() + days * 86_400_000);
@@ -229,7 +229,7 @@ describe("sessions", () => {
     expect((await call("/teams", { cookie: forged })).headers.get("location")).toContain("/login");
   });
 
-  it("get a new secret at every sign-in, and the old one ends", async () => {
+  it("get a new secret at every sign-in, and the old one ends (A05)", async () => {
     const user = await makeUser();
     const first = cookieOf(await signIn(user.email, PASSWORD)) ?? "";
     const second = cookieOf(await signIn(user.email, PASSWORD, { cookie: first })) ?? "";
@@ -238,7 +238,7 @@ describe("sessions", () => {
     expect((await call("/login", { cookie: second })).status).toBe(302);
   });
 
-  it("end at sign-out, which a link cannot do", async () => {
+  it("end at sign-out, which a link cannot do (A05, B08)", async () => {
     const user = await makeUser();
     const cookie = await signedIn(user.id);
     expect((await call("/logout", { cookie })).status).toBe(404);
@@ -287,7 +287,7 @@ describe("signing up", () => {
     expect((await call("/login", { cookie: cookieOf(signedIn) ?? "" })).status).toBe(302);
   });
 
-  it("answers a known address as a new one, and tells its owner alone", async () => {
+  it("answers a known address as a new one, and tells its owner alone (A03)", async () => {
     withEnv({ OPEN_SIGN_UP: true });
     const user = await makeUser();
     const told = async (email: string) => {
@@ -321,7 +321,7 @@ describe("signing up", () => {
     expect(page).not.toContain("MARKER");
   });
 
-  it("sets no role, flag or id that a form slips in", async () => {
+  it("sets no role, flag or id that a form slips in (C04)", async () => {
     withEnv({ OPEN_SIGN_UP: true });
     const email = "eve@lab.example";
     await call("/sign-up", { form: { ...person, email, demo: "1", id: "aaaaaaaaaaaaaaaa", role: "reader" } });
@@ -344,7 +344,7 @@ describe("a forgotten password", () => {
   }
   const NEW = "nine grey herons stand";
 
-  it("gets the same answer for every address", async () => {
+  it("gets the same answer for every address (A03)", async () => {
     const user = await makeUser();
     const page = async (email: string) => {
       const answer = await call("/reset-password", { form: { email } });
@@ -359,7 +359,7 @@ describe("a forgotten password", () => {
     expect(await db.$count(mailQueue, eq(mailQueue.recipient, "nobody@lab.example"))).toBe(0);
   });
 
-  it("is changed by the mailed link once, and every session ends", async () => {
+  it("is changed by the mailed link once, and every session ends (A05, A08)", async () => {
     const user = await makeUser();
     const cookie = await signedIn(user.id);
     const link = await linkFor(user.email);
@@ -396,7 +396,7 @@ describe("a forgotten password", () => {
     expect((await call(link, { form: { password: NEW } })).status).toBe(303);
   });
 
-  it("has a link for 30 minutes, and only the newest counts", async () => {
+  it("has a link for 30 minutes, and only the newest counts (A08)", async () => {
     const user = await makeUser();
     const old = await linkFor(user.email);
     const link = await linkFor(user.email);
@@ -413,7 +413,7 @@ describe("a forgotten password", () => {
     expect((await call(link, { form: { password: NEW } })).status).toBe(404);
   });
 
-  it("leaves no secret in the database but its hash, once the letter is sent", async () => {
+  it("leaves no secret in the database but its hash, once the letter is sent (A08)", async () => {
     const user = await makeUser();
     const secret = (await linkFor(user.email)).split("/").at(-1) ?? "";
     const [row] = await db.select().from(mailTokens).where(eq(mailTokens.userId, user.id));

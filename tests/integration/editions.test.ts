@@ -107,7 +107,7 @@ describe("freezing", () => {
     expect(new Set(made.map(({ contentSha256 }) => contentSha256)).size).toBe(1);
   });
 
-  it("cannot be changed or removed, not even by the application's own user of the database", async () => {
+  it("cannot be changed or removed, not even by the application's own user of the database (security G03)", async () => {
     const made = await freeze(actor(), at);
     const tries = [
       db.update(editions).set({ title: "another" }).where(eq(editions.id, made.id)),

@@ -39,7 +39,7 @@ const KINDS: [string, () => Promise<Response>, number][] = [
 ];
 
 describe("headers", () => {
-  it.each(KINDS)("stand on %s", async (_kind, ask, status) => {
+  it.each(KINDS)("stand on %s (B04)", async (_kind, ask, status) => {
     const answer = await ask();
     expect(answer.status).toBe(status);
     const policy = answer.headers.get("content-security-policy") ?? "";
@@ -64,7 +64,7 @@ describe("headers", () => {
     expect(answer.headers.has("strict-transport-security")).toBe(false);
   });
 
-  it("name https for a year where it is used", async () => {
+  it("name https for a year where it is used (B04)", async () => {
     const real = environment.env();
     // why: settings are read once a process.
     vi.spyOn(environment, "env").mockReturnValue({ ...real, secure: true });
@@ -72,7 +72,7 @@ describe("headers", () => {
     expect(answer.headers.get("strict-transport-security")).toBe("max-age=31536000; includeSubDomains");
   });
 
-  it("carry a nonce that every script and style of the page has, new each time", async () => {
+  it("carry a nonce that every script and style of the page has, new each time (B03)", async () => {
     const pages = await Promise.all([call("/login"), call("/login")]);
     const nonces = pages.map(
       (page) =>
@@ -112,7 +112,7 @@ describe("unsafe requests", () => {
     "/no/such/page",
   ];
 
-  it.each(FOREIGN)("from %s are refused everywhere", async (_from, origin) => {
+  it.each(FOREIGN)("from %s are refused everywhere (B01)", async (_from, origin) => {
     for (const path of ADDRESSES) {
       for (const method of UNSAFE) {
         const answer = await call(path, { method, cookie, origin });
@@ -125,7 +125,7 @@ describe("unsafe requests", () => {
     expect((await call("/theme", { form: { theme: "dark", back: "/methods" }, origin })).status).toBe(303);
   });
 
-  it("with a cookie need a page of ours even where they carry a token", async () => {
+  it("with a cookie need a page of ours even where they carry a token (B01)", async () => {
     const path = "/api/v1/ensembles/aaaaaaaaaaaaaaaa/sifts";
     const body = "{}";
     expect((await call(path, { method: "POST", token, cookie, origin: null, body })).status).toBe(403);
@@ -143,7 +143,7 @@ describe("unsafe requests", () => {
 });
 
 describe("tokens and cookies", () => {
-  it("do not stand in for each other", async () => {
+  it("do not stand in for each other (D07)", async () => {
     expect((await call("/api/v1/ensembles", { cookie })).status).toBe(401);
     const page = await call(`/teams/${teamId}`, { token });
     expect(page.headers.get("location")).toContain("/login");
@@ -194,12 +194,15 @@ describe("a database that is away", () => {
     vi.spyOn(health, "databaseAnswers").mockResolvedValue(false);
   });
 
-  it.each(["/", "/login", "/methods", "/no/such/page"])("shows %s a page that says so", async (path) => {
-    const answer = await call(path, { cookie });
-    expect(answer.status).toBe(503);
-    expect(answer.headers.get("retry-after")).toBe("5");
-    expect(await answer.text()).toContain("The server does not answer");
-  });
+  it.each(["/", "/login", "/methods", "/no/such/page"])(
+    "shows %s a page that says so (F09)",
+    async (path) => {
+      const answer = await call(path, { cookie });
+      expect(answer.status).toBe(503);
+      expect(answer.headers.get("retry-after")).toBe("5");
+      expect(await answer.text()).toContain("The server does not answer");
+    },
+  );
 
   it.each(["/api/v1/ensembles", "/files/sifts/aaaaaaaaaaaaaaaa"])("tells programs at %s", async (path) => {
     const answer = await call(path, { token, cookie });
@@ -214,7 +217,7 @@ describe("a database that is away", () => {
 });
 
 describe("failures that nobody expected", () => {
-  it("show an incident number and nothing of the cause", async () => {
+  it("show an incident number and nothing of the cause (security G02)", async () => {
     vi.spyOn(people, "findPerson").mockRejectedValue(new Error("MARKER select * from users"));
     const answer = await call("/methods", { cookie });
     expect(answer.status).toBe(500);

@@ -240,7 +240,7 @@ describe("the same bytes again", () => {
     expect(third.id).not.toBe(first.id);
   });
 
-  it("sent six times at the same moment make one ensemble with one answer", async () => {
+  it("sent six times at the same moment make one ensemble with one answer (F05)", async () => {
     const files = [{ name: "d.xyz", content: butane("at once") }];
     const before = await storedRows();
     const responses = await Promise.all(Array.from({ length: 6 }, () => upload(token, files, fields)));
@@ -507,7 +507,7 @@ describe("a person's decision on a frame", () => {
   });
 });
 
-it("gives coordinates back bit for bit, in the order asked", async () => {
+it("gives coordinates back bit for bit, in the order asked (F13)", async () => {
   const taken = await takenIn(
     token,
     [{ name: "q.xyz", content: reference("ensembles/difluoroethane.xyz") }],

@@ -35,7 +35,7 @@ const row = async (id: string) => (await db.select().from(jobs).where(eq(jobs.id
 describe("the queue", () => {
   afterEach(() => db.delete(jobs));
 
-  it("gives a job to one of two processes that claim at the same moment", async () => {
+  it("gives a job to one of two processes that claim at the same moment (F08)", async () => {
     const { id: teamId } = await makeTeam();
     const wanted = new Set([await makeJob({ teamId }), await makeJob({ teamId })]);
     const claimed = await Promise.all(["a", "b", "c", "d"].map((holder) => claimJob(holder)));
@@ -57,7 +57,7 @@ describe("the queue", () => {
     expect(order).toEqual([first, stranger, colleague, second, undefined]);
   });
 
-  it("takes a dead process's job back once its lease is over, and gives up after three tries", async () => {
+  it("takes a dead process's job back once its lease is over, and gives up after three tries (F08)", async () => {
     const { id: teamId } = await makeTeam();
     const dead = { teamId, state: "running" as const, holder: "gone" };
     const alive = await makeJob({ ...dead, attempts: 1, leaseUntil: new Date(Date.now() + 60_000) });
@@ -145,7 +145,7 @@ describe("a sift that runs", () => {
     return { id, jobId };
   }
 
-  it("is cancelled: the thread stops, the answer says so, nothing is stored", async () => {
+  it("is cancelled: the thread stops, the answer says so, nothing is stored (security E10)", async () => {
     await startJobs();
     const { id, jobId } = await running();
     expect((await (await call(`/api/v1/sifts/${id}`, { token })).json()).progress).toBeGreaterThan(0);
@@ -159,7 +159,7 @@ describe("a sift that runs", () => {
     expect((await call(`/api/v1/sifts/${id}`, { method: "DELETE", token })).status).toBe(202);
   });
 
-  it("goes back to the queue at a shutdown, which answers who waits; the next start computes it", async () => {
+  it("goes back to the queue at a shutdown, which answers who waits; the next start computes it (F03)", async () => {
     await startJobs();
     const { id, jobId } = await running();
     const waiting = call(`/api/v1/sifts/${id}?wait=60`, { token });

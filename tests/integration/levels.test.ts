@@ -179,7 +179,7 @@ describe("plans", () => {
     ]);
   });
 
-  it("are not overwritten by who opened an older version, nor under another's name", async () => {
+  it("are not overwritten by who opened an older version, nor under another's name (F07)", async () => {
     const [spring] = await listPlans({ actor, ensembleId });
     const again = { actor, ensembleId, name: "Spring", plans: set(), id: spring!.id, version: 1 };
     await expect(savePlans(again)).rejects.toMatchObject({ code: "conflict" });

@@ -121,7 +121,7 @@ describe("the mail queue", () => {
 });
 
 describe("the HTML part", () => {
-  it("shows text as text and links addresses of a line of their own only", () => {
+  it("shows text as text and links addresses of a line of their own only (B05)", () => {
     const html = letterHtml('<script>alert("x")</script> & \'y\'\n\nhttps://a.example/b?c=1&d="e"');
     expect(html).not.toContain("<script>");
     expect(html).toContain("&#60;script&#62;");

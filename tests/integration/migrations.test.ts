@@ -61,7 +61,7 @@ describe("migrations", () => {
     await connection.query(`use ${name}`);
   }
 
-  it("give the same tables when the first run is cut short at any statement", async () => {
+  it("give the same tables when the first run is cut short at any statement (F10)", async () => {
     await fresh();
     await migrateOther();
     const whole = await shapeOf(connection);
@@ -128,7 +128,7 @@ describe("migrations", () => {
 });
 
 describe("the logbook", () => {
-  it("takes rows and gives none back to change", async () => {
+  it("takes rows and gives none back to change (security G03)", async () => {
     const row = { type: "sign-in", data: {}, createdAt: new Date() };
     await db.insert(logbook).values(row);
     const words = (error: unknown) => String((error as { cause?: unknown }).cause);
@@ -149,7 +149,7 @@ describe("settings of the database server", () => {
     version: "10.11",
   };
 
-  it("pass when data survives a power cut", () => {
+  it("pass when data survives a power cut (F01)", () => {
     expect(settingsFaults(good, "full")).toEqual([]);
     expect(settingsFaults({ ...good, doublewrite: "ON", flush: "1" }, "full")).toEqual([]);
   });

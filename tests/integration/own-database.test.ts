@@ -82,7 +82,7 @@ describe("the database of an instance", () => {
     expect(await ask(database.url, "select 1 as one")).toEqual([{ one: 1 }]);
   });
 
-  it("comes back with its data after it was killed", async () => {
+  it("comes back with its data after it was killed (F02)", async () => {
     await ask(database.url, "create table lowlying.kept (n int)");
     await ask(database.url, "insert into lowlying.kept values (7)");
     process.kill(serverPid(), "SIGKILL");

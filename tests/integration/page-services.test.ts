@@ -99,7 +99,7 @@ describe("the pages of an ensemble", () => {
     await post(lab.token, `/ensembles/${ensembleId}/frames/1/release`, { reason: "back" });
   });
 
-  it("send source files byte for byte, as attachments, to members only", async () => {
+  it("send source files byte for byte, as attachments, to members only (security E05)", async () => {
     const path = `/files/ensembles/${ensembleId}/sources/0`;
     const answer = await call(path, { cookie: lab.analyst.cookie });
     expect(answer.headers.get("content-disposition")).toMatch(/^attachment; filename="four.xyz"/);

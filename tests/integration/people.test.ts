@@ -48,7 +48,7 @@ describe("the demo people", () => {
     expect(await enter("reader@lowlying.example", PASSWORD)).toBe("in");
   });
 
-  it("are shut with all they hold where strangers could come, and open again on loopback", async () => {
+  it("are shut with all they hold where strangers could come, and open again on loopback (A09)", async () => {
     await seedPeople(PASSWORD);
     const [analyst] = await db.select().from(users).where(eq(users.email, "analyst@lowlying.example"));
     const [team] = await db.select().from(teams).where(eq(teams.name, "Estuary"));

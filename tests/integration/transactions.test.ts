@@ -26,7 +26,7 @@ const counts = async () => {
 };
 
 describe("a transaction", () => {
-  it("that the database ended for a deadlock is run again as a whole", async () => {
+  it("that the database ended for a deadlock is run again as a whole (F06)", async () => {
     const runs = { first: 0, second: 0 };
     const met: { [key: string]: () => void } = {};
     const both = Promise.all(
@@ -51,7 +51,7 @@ describe("a transaction", () => {
     expect(await counts()).toEqual({ a: 2, b: 2 });
   });
 
-  it("that waited too long for a lock is run again as a whole", async () => {
+  it("that waited too long for a lock is run again as a whole (F06)", async () => {
     let release: () => void = () => {};
     const held = new Promise<void>((resolve) => {
       release = resolve;

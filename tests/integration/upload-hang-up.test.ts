@@ -52,7 +52,7 @@ async function beginUpload(frames: number) {
   return socket;
 }
 
-it("leaves nothing behind when the sender hangs up in the middle, and shows nothing before", async () => {
+it("leaves nothing behind when the sender hangs up in the middle, and shows nothing before (F04)", async () => {
   const before = await storedRows();
   const socket = await beginUpload(6_000);
   // Rows are on their way: the upload is under way, and nobody sees it.
@@ -66,7 +66,7 @@ it("leaves nothing behind when the sender hangs up in the middle, and shows noth
   await vi.waitFor(async () => expect(await storedRows()).toEqual(before), 20_000);
 });
 
-it("sweeps what a killed process left, and spares what is under way", async () => {
+it("sweeps what a killed process left, and spares what is under way (F03)", async () => {
   const before = await storedRows();
   const socket = await beginUpload(6_000);
   await vi.waitFor(

@@ -34,7 +34,9 @@ export function figureSvg(svg: SVGSVGElement, title: string): string {
   copy.removeAttribute("style");
   copy.removeAttribute("class");
   copy.removeAttribute("tabindex");
-  for (const node of copy.querySelectorAll("title")) node.remove();
+  // A file of a drawing is a drawing: nothing in it runs, leads away or is a page.
+  for (const node of copy.querySelectorAll("title, script, foreignObject")) node.remove();
+  for (const node of copy.querySelectorAll("a")) node.replaceWith(...node.children);
   const ground = document.createElementNS("http://www.w3.org/2000/svg", "rect");
   ground.setAttribute("width", "100%");
   ground.setAttribute("height", "100%");

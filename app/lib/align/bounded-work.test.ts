@@ -48,7 +48,7 @@ describe("cages", () => {
     ["cubane", cubane(), "all", 48],
     ["adamantane", adamantane(), "heavy", 24],
   ] as [string, Graph, AtomSet, number][])(
-    "%s: the exact minimum for unlike shapes, in few nodes",
+    "%s: the exact minimum for unlike shapes, in few nodes (security E10)",
     (...row) => {
       const [, graph, atoms, order] = row;
       const plan = makePlan(graph, atoms);
@@ -88,7 +88,7 @@ describe("long alkanes", () => {
     expect(comparer.nodes).toBeLessThan(DEFAULT_NODE_LIMIT);
   });
 
-  it("C60H122, two coils: ends at the bound with a real exchange, and says upper bound", () => {
+  it("C60H122, two coils: ends at the bound with a real exchange, and says upper bound (security E10)", () => {
     const graph = alkaneGraph(60);
     const plan = makePlan(graph, "all");
     const comparer = new SymmetricRmsd(plan);

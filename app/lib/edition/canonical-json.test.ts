@@ -24,7 +24,7 @@ describe("canonical JSON", () => {
     expect(() => canonicalJson(value)).toThrow(TypeError);
   });
 
-  it("keeps keys that mean something to the language as plain keys", () => {
+  it("keeps keys that mean something to the language as plain keys (security E07)", () => {
     expect(canonicalJson(JSON.parse('{"__proto__":1,"constructor":2}'))).toBe(
       '{"__proto__":1,"constructor":2}',
     );

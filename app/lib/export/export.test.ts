@@ -85,7 +85,7 @@ function parseCsv(text: string): string[][] {
 }
 
 describe("XYZ reads back", () => {
-  test("any double, to the last bit", () => {
+  test("any double, to the last bit (F13)", () => {
     const double = fc.double({ noNaN: true, noDefaultInfinity: true, min: -1e6, max: 1e6 });
     fc.assert(
       fc.property(fc.array(double, { minLength: 6, maxLength: 6 }), ([a, b, c, d, e, f]) => {
@@ -177,7 +177,7 @@ describe("CSV", () => {
     ]);
   });
 
-  test("any text reads back, and none begins as a formula", () => {
+  test("any text reads back, and none begins as a formula (security E08)", () => {
     const spicy = fc.string({ unit: fc.constantFrom(..."=+-@\t\r\n\0'\",;a1 "), maxLength: 12 });
     fc.assert(
       fc.property(fc.oneof(spicy, fc.string({ unit: "binary", maxLength: 20 })), (label) => {
@@ -208,7 +208,7 @@ describe("CSV", () => {
     expect(parseCsv(header!)[0]!.slice(8)).toEqual(["frame (2)", "x", "x (3)", "x (2)"]);
   });
 
-  test("numbers are bare, negative ones too, and exact", () => {
+  test("numbers are bare, negative ones too, and exact (security E08)", () => {
     expect([-1.5, 0.1 + 0.2, 1e21, null, Number.NaN].map(numberCell)).toEqual([
       "-1.5",
       "0.30000000000000004",

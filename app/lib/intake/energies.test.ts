@@ -164,7 +164,7 @@ describe("the rule that names the number", () => {
   });
 });
 
-test("keys called __proto__ and constructor are keys", () => {
+test("keys called __proto__ and constructor are keys (security E07)", () => {
   const findings = scan(frames("__proto__=1.# constructor=2.# energy=@"));
   expect(findings.chosen?.from).toBe("key:energy");
   expect(extractEnergy("__proto__=1.5", "key:__proto__")).toEqual({ text: "1.5", value: 1.5 });

@@ -6,7 +6,7 @@ import { openApiDocument } from "~/services/openapi.server";
 import { withEnv } from "../../factories/environment";
 import { type FilledTeam, fillTeam, threeFrames } from "../../factories/filled-team";
 import { storedRows } from "../../factories/stored";
-import { BUTANE, formOf, frame, makeLab, type Sent, upload, withJobs } from "../../factories/upload";
+import { BUTANE, formOf, frame, makeLab, type Sent, sifted, upload, withJobs } from "../../factories/upload";
 import { zipOf } from "../../factories/zip";
 import { call } from "../../setup/app";
 
@@ -217,5 +217,35 @@ describe("fields that nobody asked for (C04)", () => {
       cookie,
     });
     expect(people.status).toBe(403);
+  });
+});
+
+describe("labels and columns called like what objects have by themselves (security E07)", () => {
+  it("are labels and columns, from the file to the export", async () => {
+    const names = ["__proto__", "constructor", "toString"];
+    const shapes = names.map((name, k) => {
+      const atoms = BUTANE.map((line, at) => (at === 3 ? `C 1.9480 0.1280 0.0${k * 3}00` : line));
+      return frame(`name=${name} energy=-1.${k + 1} __proto__=${k}.5 constructor=${k}.25`, atoms);
+    });
+    const answer = await upload(lab.token, [{ name: "names.xyz", content: shapes.join("") }], {
+      ...fields,
+      energyFrom: "key:energy",
+    });
+    const { id } = await answer.json();
+    expect(answer.status).toBe(201);
+    const table = `label,hasOwnProperty [D],valueOf\n${names.map((name, k) => `${name},${k}.5,${k}`).join("\n")}\n`;
+    const added = await call(`/api/v1/ensembles/${id}/columns`, {
+      ...{ method: "POST", token: lab.token, body: formOf([{ name: "t.csv", content: table }]) },
+    });
+    const columns = await added.json();
+    expect(added.status, JSON.stringify(columns)).toBe(201);
+    expect(columns.columns).toMatchObject([
+      { name: "hasOwnProperty", count: 3, missing: 0 },
+      { name: "valueOf", count: 3, missing: 0 },
+    ]);
+    const sift = await sifted(lab.token, id, { level: "A", rmsdTolerance: 0.0001 });
+    const csv = await (await call(`/api/v1/sifts/${sift.id}/export.csv`, { token: lab.token })).text();
+    for (const name of [...names, "hasOwnProperty [D]"]) expect(csv).toContain(name);
+    expect({}.constructor).toBe(Object);
   });
 });
