@@ -105,7 +105,7 @@ test("hostile text is text in every section, on paper and in figures as files (B
   );
 });
 
-test("signing out clears what the browser kept, and Back shows nothing of it (B08)", async ({ page }) => {
+test("signing out clears what the browser kept, and closes the page (B08)", async ({ page }) => {
   await signUp(page, "Leaving", `leaving.${randomUUID()}@lab.example`);
   const team = page.url();
   await page.evaluate(() => {
