@@ -51,11 +51,12 @@ function Hero({
     <div className="grid items-start gap-x-16 gap-y-6 pt-6 sm:pt-12 lg:grid-cols-[minmax(0,5fr)_minmax(0,6fr)]">
       <div className="lg:pt-8">
         <h1 className="text-2xl font-semibold tracking-title text-balance sm:text-3xl">
-          Which conformers of this molecule matter?
+          Which conformers matter, and how sure are we?
         </h1>
         <p className="mt-4 text-base text-pretty text-ink-2 sm:text-lg">
           Lowlying takes the structures a sampler leaves behind and turns them into an ensemble you can
-          defend: every frame accounted for, duplicates explained, populations that say where they come from.
+          defend: every frame accounted for, duplicates explained, populations with error bars, averages an
+          experiment can be held against.
         </p>
         <div className="mt-6 flex flex-wrap gap-2 max-sm:[&>*]:flex-1">
           {example ? (

@@ -1,20 +1,20 @@
 const STEPS = [
   {
     title: "Take in",
-    text: "XYZ files as they are, plain or gzip. Every frame is accepted, remarked or held, with the reason.",
-  },
-  {
-    title: "Confirm",
-    text: "Which number is the energy, and in which unit: proposed with the spread it would mean, never guessed.",
+    text: "XYZ and SDF files as they are. Every frame is accepted, remarked or held, with the reason; energy and unit are confirmed, never guessed.",
   },
   { title: "Sift", text: "Exact, symmetry-corrected RMSD. Each dropped frame names whom it repeats." },
   {
     title: "Weigh",
-    text: "Populations, free energy, entropy at your temperature, mirror images and symmetry counted.",
+    text: "Populations, free energy and entropy at your temperature, mirror images and symmetry counted.",
   },
-  { title: "Look", text: "The shapes overlaid or side by side, the deeper the tint the more populated." },
-  { title: "Measure", text: "Distances, angles, torsions, and how the flask distributes them." },
-  { title: "Hand over", text: "XYZ, CSV and JSON with units, recipe and checksums; all of it by API too." },
+  { title: "Judge", text: "Two levels on the same structures, and the window that keeps 95\u00a0%." },
+  { title: "Average", text: "Couplings, distances, shifts: each with its rule and its uncertainty." },
+  { title: "Trust", text: "How complete the sampling is, and what the error of the level does." },
+  {
+    title: "Hand over",
+    text: "XYZ, SDF, CSV and JSON, editions behind a link that ends; all of it by API too.",
+  },
 ] as const;
 
 /** The seven steps that the product takes today. */

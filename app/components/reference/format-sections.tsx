@@ -19,6 +19,7 @@ export function formatSections(limits: FormatLimits): ReferenceSection[] {
   return [
     { id: "files", title: "Files and limits", body: <Files limits={limits} /> },
     { id: "xyz", title: "XYZ and extended XYZ", body: <Xyz /> },
+    { id: "sdf", title: "SDF and MOL", body: <Sdf /> },
     { id: "energies", title: "Energies", body: <Energies /> },
     { id: "tables", title: "Tables and second files", body: <Tables /> },
     { id: "held", title: "What is held, and why", body: <Held /> },
@@ -31,8 +32,9 @@ function Files({ limits }: { limits: FormatLimits }) {
   return (
     <>
       <p>
-        XYZ and extended XYZ, plain or gzip. The content decides, the name only hints. Text may be UTF-8 or
-        UTF-16 with a mark, with any line ends.
+        XYZ, extended XYZ, SDF and MOL, plain, gzip or in a zip archive. The content decides, the name only
+        hints. Text may be UTF-8 or UTF-16 with a mark, with any line ends. In an archive each entry is one
+        file, folders are ignored; an entry that is itself an archive, encrypted or a link is rejected.
       </p>
       <ul>
         <li>{formatBytes(limits.fileBytes)} unpacked a file</li>
@@ -188,6 +190,35 @@ function Xyz() {
   );
 }
 
+function Sdf() {
+  return (
+    <>
+      <p>
+        Records of V2000, read by its columns, and of V3000, in one file or alone as MOL. Bonds, charges,
+        radicals and isotopes come from the record; configurations from the positions.
+      </p>
+      <Rules
+        label="SDF and MOL"
+        rows={[
+          { input: "Fields that touch, blank titles, index gaps and continued lines of V3000", ...ACCEPTED },
+          { input: "Data fields, also over several lines; a field may be the energy", ...ACCEPTED },
+          { input: "The same field twice, or in some records only", note: "missing, never 0", ...REMARK },
+          { input: "No version on the counts line", note: "read as V2000", ...REMARK },
+          { input: "Hydrogens without positions", note: "never added", ...ASKED },
+          {
+            input: "Records of several molecules, or of another configuration",
+            note: "one group is the ensemble",
+            ...ASKED,
+          },
+          { input: "The same molecule with another order of atoms", note: "the mapping is shown", ...ASKED },
+          { input: "Flat records (2D), query features", ...HELD },
+          { input: "More than 999 atoms or bonds in V2000, a block without its end", ...HELD },
+        ]}
+      />
+    </>
+  );
+}
+
 function Energies() {
   return (
     <>
@@ -281,15 +312,18 @@ function Rejected({ limits }: { limits: FormatLimits }) {
       <Rules
         label="Rejected files"
         rows={[
-          { input: "An empty file, or one whose first line is no atom count", ...REJECTED },
+          {
+            input: "An empty file, a reaction file, or one that is neither XYZ nor SDF nor MOL",
+            ...REJECTED,
+          },
           {
             input: "Binary files, pictures, spreadsheets, PDF",
             note: "the message says what it looks like",
             ...REJECTED,
           },
           {
-            input: "Archives and other packings: tar, zip, bz2, xz, zst",
-            note: "send XYZ plain or as gzip",
+            input: "Other packings: tar, bz2, xz, zst",
+            note: "send XYZ or SDF plain, as gzip or in a zip archive",
             ...REJECTED,
           },
           { input: "A gzip file that ends early or fails its checksum", ...REJECTED },

@@ -229,9 +229,14 @@ function NoEnsembles({ data, onFiles }: { data: SeriesPageData; onFiles: (files:
         }
       >
         Drop files anywhere on this page, or choose them.
-        {example ? " The finished one shows what becomes of them; nothing you do there is kept." : ""}
+        {example
+          ? " The finished one shows what becomes of them. You may try everything there; nothing is kept."
+          : ""}
       </StatePanel>
-      <Dropzone onFiles={onFiles} hint={`XYZ and extended XYZ, also .gz; up to ${data.limits}`} />
+      <Dropzone
+        onFiles={onFiles}
+        hint={`XYZ or SDF, plain, gzip or in a zip archive; up to ${data.limits}`}
+      />
     </div>
   );
 }

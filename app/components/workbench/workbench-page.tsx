@@ -179,7 +179,7 @@ function CopyLink() {
   };
   return (
     <Button icon={<Link2 aria-hidden="true" />} onClick={copy}>
-      Copy link
+      Copy address
     </Button>
   );
 }

@@ -86,8 +86,9 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
     <div className={`pt-8 pb-16 max-sm:pt-4 ${pageClass}`}>
       <h1 className="text-lg font-semibold tracking-title sm:text-xl">Tokens of {team.name}</h1>
       <Finding wide>
-        {capital(pluralWord(live, "token"))} {live === 1 ? "works" : "work"} in this team. A token lets a
-        program send files and fetch results without a browser.
+        {capital(pluralWord(live, "token"))}
+        {team.role === "owner" ? "" : " of yours"} {live === 1 ? "works" : "work"} in this team. A token lets
+        a program send files and fetch results without a browser.
       </Finding>
       <TeamTabs team={team.id} series={series} chosen={null} at="tokens" />
       <div className="mt-8 grid items-start gap-x-12 gap-y-8 lg:grid-cols-[minmax(0,1fr)_20rem] xl:grid-cols-[minmax(0,1fr)_22.5rem]">

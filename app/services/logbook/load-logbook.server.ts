@@ -163,10 +163,19 @@ async function page(
   return { ...found, total: total[0]?.n ?? 0, people, mayRemark, now: now.toISOString() };
 }
 
+/**
+ * What members try on the example is theirs, and so are their links, whose openings nobody signed; a guest reads how the
+ * example came about.
+ */
+const FOR_GUESTS = and(
+  isNull(logbook.userId),
+  isNull(logbook.tokenId),
+  inArray(logbook.type, ["intake", "sift"]),
+);
+
 async function ensembleScope(actor: Actor, ensembleId: string) {
   const grant = await accessEnsemble(actor, "read", ensembleId);
-  // What members try on the example is theirs; a guest reads how it came about.
-  const own = grant.role === "guest" ? and(isNull(logbook.userId), isNull(logbook.tokenId)) : undefined;
+  const own = grant.role === "guest" ? FOR_GUESTS : undefined;
   const scope = and(eq(logbook.teamId, grant.teamId), eq(logbook.ensembleId, grant.ensembleId), own);
   return { grant, scope };
 }
