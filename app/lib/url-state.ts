@@ -25,7 +25,7 @@ export interface WorkbenchState {
 
 /** What the section on levels compares, and how. */
 export interface CompareState {
-  /** Ids of level and reference; null is the first and the last that arrived. */
+  /** Ids of level and reference; null is the cheapest and the best by their names. */
   level: string | null;
   reference: string | null;
   zero: ZeroChoice;

@@ -32,14 +32,20 @@ interface Row {
   note?: string;
 }
 
+/** Beyond this many conformers a bootstrap would keep a phone busy for minutes. */
+export const MOST_RESAMPLED = 5000;
+
 /** Every figure of agreement with its interval; each says where it comes from. */
 export function AgreementTable({
   found,
   intervals,
+  resampled,
   temperatureK,
 }: {
   found: Comparison;
   intervals: ComparisonIntervals | null;
+  /** False where there are too many conformers for intervals: none are coming. */
+  resampled: boolean;
   temperatureK: number;
 }) {
   const rows = agreementRows(found);
@@ -75,7 +81,7 @@ export function AgreementTable({
                 <Figure row={row} inputs={inputs} intervals={intervals} />
               </Td>
               <Td align="right" className="text-ink-2">
-                {row.interval ? <IntervalCell row={row} intervals={intervals} n={n} /> : null}
+                {row.interval ? <IntervalCell {...{ row, intervals, resampled, n }} /> : null}
               </Td>
               <Td className="text-ink-3 max-sm:hidden">{row.unit}</Td>
             </Tr>
@@ -87,7 +93,9 @@ export function AgreementTable({
           ? `Intervals: ${formatCount(intervals.resamples)} resamples of the conformers, 2.5 to 97.5 %, ${intervals.generator}, seed ${intervals.seed}; each resample finds its own zero. Conformers of one molecule are not independent: they say nothing of other molecules.`
           : n < 2
             ? "One conformer has no interval."
-            : "The intervals are being drawn."}
+            : resampled
+              ? "The intervals are being drawn."
+              : `No intervals: they are not drawn for more than ${plural(MOST_RESAMPLED, "conformer")}, and here are ${formatCount(n)}.`}
       </p>
     </div>
   );
@@ -121,8 +129,19 @@ function Figure({
   );
 }
 
-function IntervalCell({ row, intervals, n }: { row: Row; intervals: ComparisonIntervals | null; n: number }) {
+function IntervalCell({
+  row,
+  intervals,
+  resampled,
+  n,
+}: {
+  row: Row;
+  intervals: ComparisonIntervals | null;
+  resampled: boolean;
+  n: number;
+}) {
   if (!row.interval || n < 2 || row.value === null) return ABSENT;
+  if (intervals === null && !resampled) return ABSENT;
   if (intervals === null) return <Skeleton className="ml-auto h-3 w-16" />;
   const interval = intervals.intervals[row.interval];
   if (interval === null) return ABSENT;

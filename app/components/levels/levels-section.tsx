@@ -8,9 +8,10 @@ import { TextLink } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { useLevelTask } from "~/hooks/use-level-task";
 import { formatCount, formatTemperature, plural } from "~/lib/format";
+import { chooseLevels } from "~/lib/levels/better-level";
 import type { LevelEnergiesView } from "~/lib/levels/level-energies";
 import { comparisonStory } from "~/lib/levels/story";
-import { AgreementTable } from "./agreement-table";
+import { AgreementTable, MOST_RESAMPLED } from "./agreement-table";
 import { ComparedTable } from "./compared-table";
 import { ErrorAgainstEnergy } from "./error-against-energy";
 import { LevelAgainstLevel } from "./level-against-level";
@@ -24,9 +25,6 @@ import { SlopeChart } from "./slope-chart";
 import { type Comparison, type LevelData, useComparison, useLevelData, useMembers } from "./use-comparison";
 import { WindowChart } from "./window-chart";
 import { WindowTable } from "./window-table";
-
-/** Beyond this many conformers a bootstrap would keep a phone busy for minutes. */
-const MOST_RESAMPLED = 5000;
 
 /** Levels: can the cheap one be trusted, and how wide must its window be? */
 export function LevelsSection({ energies }: { energies: readonly LevelEnergiesView[] }) {
@@ -75,22 +73,9 @@ function TooFew({ levels }: { levels: readonly LevelData[] }) {
   );
 }
 
-/** The two levels that the address names; the first and the last that arrived where it names none. */
-export function chosenLevels(
-  levels: readonly LevelData[],
-  asked: { level: string | null; reference: string | null },
-): { level: LevelData | null; reference: LevelData | null } {
-  const byId = (id: string | null) => levels.find((one) => one.id === id) ?? null;
-  const reference = byId(asked.reference) ?? levels.filter((one) => one.id !== asked.level).at(-1) ?? null;
-  const level = byId(asked.level) ?? levels.find((one) => one !== reference) ?? null;
-  if (level !== null && level === reference)
-    return { level, reference: levels.find((one) => one !== level) ?? null };
-  return { level, reference };
-}
-
 function Compared({ levels }: { levels: readonly LevelData[] }) {
   const { state, temperatureK } = useWorkbench();
-  const { level, reference } = chosenLevels(levels, state.compare);
+  const { level, reference } = chooseLevels(levels, state.compare);
   const { members, among, weightsReason } = useMembers(reference);
   const found = useComparison(level, reference, members);
   if (!level || !reference) return null;
@@ -169,11 +154,12 @@ function Figures({ found: live }: { found: Comparison }) {
     () => ({ level: paired.level, reference: paired.reference, weights: paired.weights, temperatureK }),
     [paired, temperatureK],
   );
+  const resampled = comparison.n <= MOST_RESAMPLED;
   const intervals = useLevelTask(
     "intervals",
     useMemo(
       () =>
-        comparison.n >= 2 && comparison.n <= MOST_RESAMPLED
+        comparison.n >= 2 && resampled
           ? {
               comparison: {
                 ...base,
@@ -183,7 +169,7 @@ function Figures({ found: live }: { found: Comparison }) {
               seed: PAGE_SEED,
             }
           : null,
-      [base, comparison.n, comparison.align, state.compare.zeroFrame, zeroPlace],
+      [base, comparison.n, resampled, comparison.align, state.compare.zeroFrame, zeroPlace],
     ),
   );
   const band = useLevelTask(
@@ -196,8 +182,8 @@ function Figures({ found: live }: { found: Comparison }) {
       <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
         <LevelAgainstLevel {...shared} />
         <WindowChart found={found} band={band} />
-        <AgreementTable found={found} intervals={intervals} temperatureK={temperatureK} />
-        <WindowTable found={found} intervals={intervals} band={band} />
+        <AgreementTable found={found} {...{ intervals, resampled, temperatureK }} />
+        <WindowTable found={found} {...{ intervals, resampled, band }} />
       </div>
       <ComparedTable {...shared} />
       <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">

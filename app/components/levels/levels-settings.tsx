@@ -1,3 +1,5 @@
+import { ArrowLeftRight } from "lucide-react";
+import { Button } from "~/components/ui/button";
 import { LevelSelect } from "~/components/ui/level-marker";
 import { NumberField } from "~/components/ui/number-field";
 import { SelectField } from "~/components/ui/select-field";
@@ -25,7 +27,7 @@ export function LevelsSettings({
   const { compare } = state;
   const set = (part: Partial<CompareState>, gradual = false) =>
     change({ compare: { ...compare, ...part } }, { gradual });
-  const swap = (part: { level?: string; reference?: string }) => {
+  const choose = (part: { level?: string; reference?: string }) => {
     const next = { level: level.id, reference: reference.id, ...part };
     // A level is not compared with itself: choosing it on one side moves the other.
     if (next.level === next.reference) {
@@ -48,13 +50,29 @@ export function LevelsSettings({
       words={`${words.join(", ")}.`}
       columns="grid-cols-2 xl:grid-cols-[minmax(0,1fr)_minmax(0,1fr)_minmax(0,1fr)_minmax(0,1fr)]"
     >
-      <LevelSelect label="Level" levels={levels} value={level.id} onChange={(id) => swap({ level: id })} />
-      <LevelSelect
-        label="Reference"
-        levels={levels}
-        value={reference.id}
-        onChange={(id) => swap({ reference: id })}
-      />
+      <div className="col-span-2 grid grid-cols-[minmax(0,1fr)_auto_minmax(0,1fr)] items-end gap-x-3 gap-y-4 max-sm:grid-cols-1">
+        <LevelSelect
+          label="Level"
+          levels={levels}
+          value={level.id}
+          onChange={(id) => choose({ level: id })}
+        />
+        <Button
+          icon={<ArrowLeftRight aria-hidden="true" />}
+          title="Judges the reference by the level"
+          // The same two, and the common conformer is one of both: all else stays as it is set.
+          onClick={() => set({ level: reference.id, reference: level.id })}
+        >
+          Swap
+          <span className="sr-only"> level and reference</span>
+        </Button>
+        <LevelSelect
+          label="Reference"
+          levels={levels}
+          value={reference.id}
+          onChange={(id) => choose({ reference: id })}
+        />
+      </div>
       <SelectField
         label="Zero of energy"
         value={compare.zero}

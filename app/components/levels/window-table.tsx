@@ -15,10 +15,13 @@ import type { Comparison } from "./use-comparison";
 export function WindowTable({
   found,
   intervals,
+  resampled,
   band,
 }: {
   found: Comparison;
   intervals: ComparisonIntervals | null;
+  /** False where there are too many conformers for intervals: none are coming. */
+  resampled: boolean;
   band: WindowBand | null;
 }) {
   const { ensemble, state } = useWorkbench();
@@ -63,7 +66,7 @@ export function WindowTable({
                 <Td align="right" className="text-ink-2 max-sm:hidden">
                   {interval ? (
                     `${formatEnergy(interval.low)} to ${formatEnergy(interval.high)}`
-                  ) : intervals === null && !alone && row.share < 1 ? (
+                  ) : intervals === null && resampled && !alone && row.share < 1 ? (
                     <Skeleton className="ml-auto h-3 w-16" />
                   ) : (
                     ABSENT

@@ -1,6 +1,5 @@
 import { useMemo, useState } from "react";
 import { href } from "react-router";
-import { chosenLevels } from "~/components/levels/levels-section";
 import { LevelsTabs } from "~/components/levels/levels-tabs";
 import { type LevelData, useLevelData, useMembers } from "~/components/levels/use-comparison";
 import { Badge } from "~/components/ui/badge";
@@ -12,6 +11,7 @@ import { StatePanel } from "~/components/ui/state-panel";
 import { TextLink } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { plural } from "~/lib/format";
+import { chooseLevels } from "~/lib/levels/better-level";
 import type { LevelEnergiesView, Member } from "~/lib/levels/level-energies";
 import type { Plan, PlanSet } from "~/lib/plan/plan";
 import { firstPlans } from "~/lib/plan/start";
@@ -36,7 +36,7 @@ export function PlanSection({
   const levels = useLevelData(energies);
   const { state } = useWorkbench();
   const { members } = useMembers(levels[0] ?? null);
-  const { level, reference } = chosenLevels(levels, state.compare);
+  const { level, reference } = chooseLevels(levels, state.compare);
   return (
     <section aria-labelledby="section-title">
       <SectionHead id="section-title" title="Levels: plan" aside={<LevelsTabs here="plan" />} />

@@ -1,3 +1,4 @@
+import { cheapAndBetter } from "../../lib/levels/better-level.ts";
 import { chooseWeights } from "../../lib/thermo/populations.ts";
 import { ENERGY_UNITS, kcalPer } from "../../lib/units.ts";
 import type { LevelView } from "../../lib/views.ts";
@@ -76,15 +77,17 @@ function countNames(lists: readonly string[][]): SeriesLevels["names"] {
   );
 }
 
-/** The two levels that most ensembles have together, the one that arrived first in front. */
+/** The two levels that most ensembles have together, the one to be judged in front. */
 function commonPair(lists: readonly { name: string; ordinal: number }[][]): [string, string] | null {
   const counts = new Map<string, { pair: [string, string]; n: number }>();
   for (const list of lists) {
     const inOrder = [...list].sort((a, b) => a.ordinal - b.ordinal);
     for (const [k, a] of inOrder.entries()) {
       for (const b of inOrder.slice(k + 1)) {
-        const key = JSON.stringify([a.name, b.name]);
-        const found = counts.get(key) ?? { pair: [a.name, b.name], n: 0 };
+        const { level, reference } = cheapAndBetter([a, b]);
+        const pair: [string, string] = [(level ?? a).name, (reference ?? b).name];
+        const key = JSON.stringify(pair);
+        const found = counts.get(key) ?? { pair, n: 0 };
         counts.set(key, { ...found, n: found.n + 1 });
       }
     }
