@@ -553,6 +553,8 @@ export const sifts = mysqlTable(
     codeVersion: varchar({ length: 40 }),
     createdBy: idColumn(),
     createdAt: timeColumn().notNull(),
+    /** When it was asked for again: the one asked for last is the ensemble's own. Null where it was asked for once. */
+    askedAt: timeColumn(),
   },
   (t) => [
     uniqueIndex("sifts_same").on(t.ensembleId, t.recipeSha, t.inputSha),

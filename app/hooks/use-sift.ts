@@ -60,6 +60,18 @@ export function useRunningSift(id: string | null): SiftState | null {
   return data?.id === id ? data : null;
 }
 
+/**
+ * Makes a known set the ensemble's own again, the one that every page shows where no other is named: the same recipe is
+ * the same sift, so asking once more computes nothing.
+ */
+export function makeCurrent(ensembleId: string, request: SiftRequest): void {
+  void fetch(`/files/ensembles/${ensembleId}/sifts`, {
+    method: "POST",
+    headers: { "content-type": "application/json", accept: "application/json" },
+    body: JSON.stringify(request),
+  }).catch(() => undefined);
+}
+
 export interface Asked {
   id: string;
   progress: number;

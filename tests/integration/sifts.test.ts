@@ -3,6 +3,7 @@ import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { jobs, logbook, sifts } from "~/db/schema.server";
 import { listEnsembles } from "~/services/ensembles/list-ensembles.server";
+import { findSiftsOf } from "~/services/sifts/find-sift.server";
 import { loadSift } from "~/services/sifts/load-sift.server";
 import { frame, makeLab, post, reference, sifted, takenIn, withJobs } from "../factories/upload";
 import { call } from "../setup/app";
@@ -73,6 +74,15 @@ describe("a sift", () => {
       Array.from({ length: 5 }, async () => (await ask({ level: "MMFF94", rmsdTolerance: 0.31 })).json()),
     );
     expect(new Set(answers.map((answer) => answer.id)).size).toBe(1);
+  });
+
+  it("asked for again, is the one that pages show where no other is named", async () => {
+    const first = (await (await ask({ level: "MMFF94", rmsdTolerance: 0.27 })).json()).id;
+    const second = (await (await ask({ level: "MMFF94", rmsdTolerance: 0.28 })).json()).id;
+    const newest = async () => (await findSiftsOf([ensembleId]))[0]?.id;
+    expect(await newest()).toBe(second);
+    expect((await (await ask({ level: "MMFF94", rmsdTolerance: 0.27 })).json()).id).toBe(first);
+    expect(await newest()).toBe(first);
   });
 
   it("accounts for every frame exactly once", async () => {

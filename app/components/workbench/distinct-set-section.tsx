@@ -6,7 +6,7 @@ import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { TextButton, TextLink } from "~/components/ui/text-link";
-import { useNewSift } from "~/hooks/use-sift";
+import { makeCurrent, useNewSift } from "~/hooks/use-sift";
 import { useTimeLeft } from "~/hooks/use-time-left";
 import { capital, fixed, formatPercent, formatRmsd, formatSeconds, plural, withUnit } from "~/lib/format";
 import type { SiftRequest } from "~/lib/recipe/recipe";
@@ -25,7 +25,12 @@ export function DistinctSetSection() {
   const { search } = useLocation();
   // One step of history for one gesture: while a thumb is held the later results replace the first.
   const gesture = useRef<"open" | "fresh">("fresh");
-  const [before, setBefore] = useState<{ id: string; kept: number; tolerance: number } | null>(null);
+  const [before, setBefore] = useState<{
+    id: string;
+    kept: number;
+    tolerance: number;
+    request: SiftRequest;
+  } | null>(null);
   // Settings that were cancelled go back to those of the set that is shown.
   const [cancelled, setCancelled] = useState(0);
   // The settings as they stand, ahead of the set that is shown.
@@ -44,7 +49,12 @@ export function DistinctSetSection() {
       return;
     }
     if (result && gesture.current === "fresh")
-      setBefore({ id: sift.id, kept: result.kept.length, tolerance: sift.recipe.rmsdTolerance });
+      setBefore({
+        id: sift.id,
+        kept: result.kept.length,
+        tolerance: sift.recipe.rmsdTolerance,
+        request: requestOf(sift.recipe),
+      });
     const replace = gesture.current === "open";
     gesture.current = "open";
     // The step before must be in the history, or this one would overtake it.
@@ -103,6 +113,7 @@ export function DistinctSetSection() {
               <TextButton
                 onClick={() => {
                   setBefore(null);
+                  makeCurrent(ensemble.id, before.request);
                   change({ sift: before.id });
                 }}
               >

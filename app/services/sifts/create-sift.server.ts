@@ -1,5 +1,5 @@
 import { createHash } from "node:crypto";
-import { and, eq, isNull } from "drizzle-orm";
+import { and, desc, eq, isNull } from "drizzle-orm";
 import { inTransaction, type Queryable } from "../../db/client.server.ts";
 import { isDuplicate } from "../../db/driver-errors.server.ts";
 import { newId } from "../../db/new-id.server.ts";
@@ -15,7 +15,7 @@ import { siftJob } from "../jobs/definitions/sift.ts";
 import { enqueueJob } from "../jobs/enqueue-job.server.ts";
 import { wakeJobs } from "../jobs/run-jobs.server.ts";
 import { type Doer, writeEntry } from "../logbook/write-entry.server.ts";
-import { findSift } from "./find-sift.server.ts";
+import { findSift, lastAsked } from "./find-sift.server.ts";
 
 export interface AskedSift {
   id: string;
@@ -78,9 +78,24 @@ async function startAgain(tx: Queryable, siftId: string, at: Asker, recipe: Sift
   });
   await tx
     .update(sifts)
-    .set({ jobId, result: null, summary: null, keptCount: null, createdAt: new Date() })
+    .set({ jobId, result: null, summary: null, keptCount: null, createdAt: new Date(), askedAt: null })
     .where(eq(sifts.id, siftId));
   await writeEntry(tx, at, at, { type: "sift", data: { siftId, automatic, recipe } });
+}
+
+/**
+ * Makes a known sift the one that pages show where no other is named: whoever asks for it again, by going back to
+ * earlier settings, means it.
+ */
+async function putFirst(tx: Queryable, ensembleId: string, siftId: string): Promise<void> {
+  const newest = await tx
+    .select({ id: sifts.id })
+    .from(sifts)
+    .where(eq(sifts.ensembleId, ensembleId))
+    .orderBy(desc(lastAsked), desc(sifts.id))
+    .limit(1);
+  if (newest[0]?.id === siftId) return;
+  await tx.update(sifts).set({ askedAt: new Date() }).where(eq(sifts.id, siftId));
 }
 
 async function insertOrFind(
@@ -101,6 +116,7 @@ async function insertOrFind(
   if (known !== undefined) {
     const { status } = await findSift(known, tx);
     if (status === "failed" || status === "cancelled") await startAgain(tx, known, at, recipe, automatic);
+    else if (!automatic) await putFirst(tx, at.ensembleId, known);
     return known;
   }
   const id = newId();

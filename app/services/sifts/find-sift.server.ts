@@ -1,4 +1,4 @@
-import { and, desc, eq, inArray, type SQL } from "drizzle-orm";
+import { and, desc, eq, inArray, type SQL, sql } from "drizzle-orm";
 import { db, type Queryable } from "../../db/client.server.ts";
 import { columns, ensembles, jobs, sifts } from "../../db/schema.server.ts";
 import type { SiftRecipe } from "../../lib/recipe/recipe.ts";
@@ -40,7 +40,10 @@ const fields = {
   acceptedSha: ensembles.acceptedSha,
 };
 
-/** Sifts with their state, newest first. */
+/** When a sift was asked for last: going back to earlier settings makes an old one the newest. */
+export const lastAsked = sql`coalesce(${sifts.askedAt}, ${sifts.createdAt})`;
+
+/** Sifts with their state, the one asked for last first. */
 async function find(where: SQL | undefined, on: Queryable): Promise<FoundSift[]> {
   const rows = await on
     .select(fields)
@@ -48,7 +51,7 @@ async function find(where: SQL | undefined, on: Queryable): Promise<FoundSift[]>
     .innerJoin(jobs, eq(jobs.id, sifts.jobId))
     .innerJoin(ensembles, eq(ensembles.id, sifts.ensembleId))
     .where(where)
-    .orderBy(desc(sifts.createdAt), desc(sifts.id));
+    .orderBy(desc(lastAsked), desc(sifts.id));
   const levels = await levelsOf([...new Set(rows.map((row) => row.ensembleId))], on);
   return rows.map(({ inputSha, acceptedSha, ...row }) => {
     const level = row.recipe.level === null ? null : levels.get(row.recipe.level);
@@ -99,8 +102,10 @@ export function chooseSift(newestFirst: readonly FoundSift[]): FoundSift | null 
 
 /** The sift that guests are shown: the one that intake started, whatever members try later. */
 export function chooseFirstSift(newestFirst: readonly FoundSift[]): FoundSift | null {
-  const done = newestFirst.filter((sift) => sift.current && sift.status === "done");
-  return done.at(-1) ?? chooseSift(newestFirst);
+  const done = newestFirst
+    .filter((sift) => sift.current && sift.status === "done")
+    .toSorted((a, b) => a.createdAt.getTime() - b.createdAt.getTime());
+  return done[0] ?? chooseSift(newestFirst);
 }
 
 /** The stored result of a sift; null until it is done. */

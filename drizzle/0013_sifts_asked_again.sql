@@ -1,0 +1,1 @@
+ALTER TABLE `sifts` ADD `asked_at` datetime(3);
