@@ -18,7 +18,7 @@ describe("formulaRuns", () => {
   });
 
   it("leaves atoms, levels of theory and words alone", () => {
-    expect(formulas("H14 has moved from N4 to O8; MMFF94 and B3LYP, GFN2, at 300 K (X38).")).toEqual([]);
+    expect(formulas("H14 has moved from N4 to O8; MMFF94 and B3LYP, MP2, at 300 K (X38).")).toEqual([]);
     expect(formulas("")).toEqual([]);
   });
 });
