@@ -11,6 +11,7 @@ import { AddBatch } from "./add-batch";
 import { AskCards } from "./ask-cards";
 import { FileMessages, HeldList, RemarkedList } from "./frame-lists";
 import { FrameStripFigure } from "./frame-strip-figure";
+import { ReadAgain } from "./read-again";
 import { useWorkbench } from "./workbench-context";
 
 /** What was read, and what became of every frame. */
@@ -74,6 +75,7 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
         </p>
       </section>
       <Answered intake={intake} />
+      {ensemble.mayCompute ? <ReadAgain intake={intake} /> : null}
       {ensemble.chiralityNote ? (
         <Note className="mt-9">
           The molecule counts as{" "}

@@ -4,9 +4,11 @@ import { Button, ButtonLink } from "~/components/ui/button";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { Skeleton } from "~/components/ui/skeleton";
 import { StatePanel } from "~/components/ui/state-panel";
+import { useNewSift } from "~/hooks/use-sift";
 import { useTimeLeft } from "~/hooks/use-time-left";
 import { formatCount, formatPercent, formatSeconds, plural } from "~/lib/format";
 import type { SiftView } from "~/lib/views";
+import { requestOf } from "~/lib/workbench/recipe-words";
 import { useWorkbench } from "./workbench-context";
 
 /**
@@ -95,20 +97,54 @@ function Running({ sift }: { sift: SiftView }) {
 export function OutdatedNote({ onAgain, busy }: { onAgain?: () => void; busy?: boolean }) {
   const { sift, result, ensemble } = useWorkbench();
   if (sift === null || result === null || sift.current) return null;
+  if (ensemble.mayCompute && onAgain === undefined) return <OutdatedWithAct sift={sift} />;
+  return <OutdatedPanel onAgain={ensemble.mayCompute ? onAgain : undefined} busy={busy} />;
+}
+
+/** Where a section has no settings of a sift: the same recipe is asked for from the note itself. */
+function OutdatedWithAct({ sift }: { sift: SiftView }) {
+  const { ensemble, change } = useWorkbench();
+  const { ask, asked, error } = useNewSift(ensemble.id, (id) => void change({ sift: id }));
+  return (
+    <OutdatedPanel
+      onAgain={() => void ask(requestOf(sift.recipe))}
+      busy={asked !== null}
+      progress={asked?.progress}
+      error={error}
+    />
+  );
+}
+
+function OutdatedPanel({
+  onAgain,
+  busy,
+  progress,
+  error,
+}: {
+  onAgain?: () => void;
+  busy?: boolean;
+  progress?: number;
+  error?: string | null;
+}) {
   return (
     <StatePanel
       tone="held"
       title="These results are of the frames as they were"
       className="mt-4"
       actions={
-        ensemble.mayCompute && onAgain ? (
+        onAgain ? (
           <Button onClick={onAgain} disabled={busy}>
-            Sift the frames as they are
+            {progress === undefined ? "Sift the frames as they are" : `Comparing, ${formatPercent(progress)}`}
           </Button>
         ) : undefined
       }
     >
       <p>Frames were held, released or read again after this sift.</p>
+      {error ? (
+        <p role="alert" className="text-danger">
+          {error}
+        </p>
+      ) : null}
     </StatePanel>
   );
 }

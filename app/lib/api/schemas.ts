@@ -311,6 +311,7 @@ export const rereadRequestSchema = z
       .meta(shownAs({ type: "number", minimum: 0.001, maximum: 100_000 }, "K")),
   })
   .meta({ id: "RereadRequest", description: "The new answers; what is left out is open again." });
+export type RereadRequest = z.infer<typeof rereadRequestSchema>;
 
 export const decisionRequestSchema = z
   .strictObject({ reason: z.string().trim().min(1).max(500) })

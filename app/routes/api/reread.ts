@@ -1,6 +1,7 @@
 import { rereadRequestSchema } from "~/lib/api/schemas";
 import { accessEnsemble } from "~/services/auth/access.server";
 import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
+import { rereadAnswers } from "~/services/ensembles/reread-answers";
 import { rereadEnsemble } from "~/services/ensembles/reread-ensemble.server";
 import { answerCall, json, readJsonOrForm } from "./answer-call.server";
 
@@ -8,19 +9,7 @@ export const action = answerCall({
   async POST({ actor, params, request }) {
     const { teamId, ensembleId } = await accessEnsemble(actor, "take-in", params.id ?? "");
     const asked = await readJsonOrForm(request, rereadRequestSchema);
-    await rereadEnsemble({
-      actor,
-      ensembleId,
-      answers: {
-        energyUnit: asked.energyUnit ?? null,
-        energyFrom: asked.energyFrom ?? null,
-        level: asked.level ?? null,
-        energyKind: asked.energyKind ?? "electronic",
-        energyTemperature: asked.energyTemperature ?? null,
-        ...(asked.energyKind === undefined ? {} : { kindStated: true }),
-      },
-      kindStated: asked.energyKind !== undefined,
-    });
+    await rereadEnsemble({ actor, ensembleId, ...rereadAnswers(asked) });
     return json(await describeEnsemble(teamId, ensembleId));
   },
 });

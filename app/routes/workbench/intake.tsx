@@ -3,12 +3,15 @@ import type { ActAnswer } from "~/components/workbench/act-answer";
 import { IntakeSection } from "~/components/workbench/intake-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
+import { rereadRequestSchema, uploadFieldsSchema } from "~/lib/api/schemas";
 import type { IntakeView } from "~/lib/views";
 import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { answerQuestions } from "~/services/ensembles/answer-questions.server";
 import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
 import { ensembleNameSchema, renameEnsemble } from "~/services/ensembles/rename-ensemble.server";
+import { rereadAnswers } from "~/services/ensembles/reread-answers";
+import { rereadEnsemble } from "~/services/ensembles/reread-ensemble.server";
 import { splitOff } from "~/services/ensembles/split-off.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import type { Route } from "./+types/intake";
@@ -29,6 +32,12 @@ export async function action({ request, params, context }: Route.ActionArgs) {
     }
   });
 }
+
+/** As a program asks for it; a form sends the temperature as text. */
+const rereadFormSchema = rereadRequestSchema.extend({
+  energyTemperature: uploadFieldsSchema.shape.energyTemperature,
+});
+const REREAD_FIELDS = ["level", "energyUnit", "energyFrom", "energyKind", "energyTemperature"] as const;
 
 const refused = (message: string) => data({ ok: false, message } satisfies ActAnswer, { status: 400 });
 
@@ -58,6 +67,13 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
         return refused("Give the number of a frame, counted from 1.");
       const made = await splitOff({ actor, ensembleId, frame: Number(text("frame")) });
       return { ok: true, done: { intent, made } } satisfies ActAnswer;
+    }
+    case "reread": {
+      const typed = REREAD_FIELDS.map((name) => [name, text(name)] as const);
+      const asked = rereadFormSchema.safeParse(Object.fromEntries(typed.filter(([, value]) => value !== "")));
+      if (!asked.success) return refused(asked.error.issues.map(({ message }) => message).join(" "));
+      await rereadEnsemble({ actor, ensembleId, ...rereadAnswers(asked.data) });
+      return { ok: true, done: { intent } } satisfies ActAnswer;
     }
     case "rename": {
       const name = ensembleNameSchema.safeParse(text("name"));
