@@ -119,7 +119,7 @@ function Refusals({ limits }: { limits: ApiLimits }) {
 
 function Call({ call }: { call: CallView }) {
   return (
-    <div className="grid gap-4 text-sm">
+    <div className="grid grid-cols-[minmax(0,1fr)] gap-4 text-sm">
       {call.fields.length > 0 ? (
         <Table aria-label={`Fields of ${call.method} ${call.path}`}>
           <thead>
@@ -143,7 +143,7 @@ function Call({ call }: { call: CallView }) {
                 <Td className="align-top text-ink-2 max-sm:hidden">{field.place}</Td>
                 <Td wrap className="align-top">
                   {field.words}
-                  <span className="block text-xs break-words text-ink-3">{field.type}</span>
+                  <span className="block text-xs [overflow-wrap:anywhere] text-ink-3">{field.type}</span>
                 </Td>
               </Tr>
             ))}
