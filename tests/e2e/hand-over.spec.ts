@@ -93,6 +93,8 @@ test.describe("handing over", () => {
     await page.reload();
     await expect(page.getByRole("table", { name: "Links" }).getByText("1 time")).toBeVisible();
     await page.getByRole("button", { name: "End now the link for Partner laboratory" }).click();
+    await page.getByRole("dialog").getByRole("button", { name: "End link" }).click();
+    await expect(page.getByText("The link for Partner laboratory has ended.")).toBeVisible();
     await expect(page.getByRole("table", { name: "Links" }).getByText("ended by hand")).toBeVisible();
     const ended = await phone.reload();
     expect(ended?.status()).toBe(404);

@@ -1,6 +1,6 @@
+import { RuleName } from "~/components/averages/rule-name";
 import { Badge } from "~/components/ui/badge";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
-import { RULE_WORDS } from "~/lib/averages/rule";
 import type { EditionView } from "~/lib/edition/views";
 import { fixed, formatPercent, formatTemperature } from "~/lib/format";
 import { EditionHead } from "./edition-head";
@@ -32,7 +32,7 @@ export function AveragesTable({ edition }: { edition: EditionView }) {
             <Th align="right" className="max-sm:hidden">
               Covered
             </Th>
-            <Th>Unit</Th>
+            <Th className="max-sm:hidden">Unit</Th>
           </tr>
         </thead>
         <tbody>
@@ -40,17 +40,22 @@ export function AveragesTable({ edition }: { edition: EditionView }) {
             const digits = digitsFor(row.spread, row.average);
             return (
               <Tr key={k} className="figures">
-                <Td wrap>
+                <Td wrap className="[overflow-wrap:anywhere]">
                   {row.property}
-                  <span className="block text-xs text-ink-3 sm:hidden">{RULE_WORDS[row.rule].name}</span>
+                  <span className="block text-xs text-ink-3 sm:hidden">
+                    <RuleName rule={row.rule} />
+                    {row.unit ? `, in ${row.unit}` : ""}
+                  </span>
                 </Td>
-                <Td className="text-ink-2 max-sm:hidden">{RULE_WORDS[row.rule].name}</Td>
+                <Td className="text-ink-2 max-sm:hidden">
+                  <RuleName rule={row.rule} />
+                </Td>
                 <Td align="right">{fixed(row.average, digits)}</Td>
                 <Td align="right">{fixed(row.spread, digits)}</Td>
                 <Td align="right" className="max-sm:hidden">
                   {row.covered < 1 ? <Badge>{formatPercent(row.covered, 1)}</Badge> : "all"}
                 </Td>
-                <Td className="text-ink-2">{row.unit ?? ""}</Td>
+                <Td className="text-ink-2 max-sm:hidden">{row.unit ?? ""}</Td>
               </Tr>
             );
           })}

@@ -66,7 +66,7 @@ export function EditionShell({
         <footer className="border-t border-rule text-xs text-ink-3 print:hidden">
           <div className={`${SIDES} figures flex flex-wrap justify-between gap-x-6 gap-y-2 py-4`}>
             <p>{foot}</p>
-            <p>Since the edition before: {changeSentence(edition.changed)}</p>
+            {edition.number > 1 ? <p>Since the edition before: {changeSentence(edition.changed)}</p> : null}
           </div>
         </footer>
       </div>

@@ -1,6 +1,7 @@
 import { Link2 } from "lucide-react";
 import { useState } from "react";
 import { useFetcher } from "react-router";
+import { useShellData } from "~/components/layout/shell-data";
 import { Button, SubmitButton } from "~/components/ui/button";
 import { Checkbox } from "~/components/ui/checkbox";
 import { CopyButton } from "~/components/ui/copy-button";
@@ -10,6 +11,8 @@ import { SelectField } from "~/components/ui/select-field";
 import type { EditionRow } from "~/lib/edition/views";
 import { formatDateTime, plural } from "~/lib/format";
 import type { HandOverAnswer } from "./answer";
+
+const CONTACT_MOST = 200;
 
 /** Makes a link: for whom, until when, with what; then shows its address once. */
 export function LinkDialog({ editions, linkDays }: { editions: readonly EditionRow[]; linkDays: number }) {
@@ -40,6 +43,7 @@ export function LinkDialog({ editions, linkDays }: { editions: readonly EditionR
 function LinkForm({ editions, linkDays }: { editions: readonly EditionRow[]; linkDays: number }) {
   const fetcher = useFetcher<HandOverAnswer>();
   const { data, state } = fetcher;
+  const { user } = useShellData();
   if (data?.made) return <MadeLink made={data.made} />;
   const fields = data?.fields ?? {};
   return (
@@ -80,7 +84,8 @@ function LinkForm({ editions, linkDays }: { editions: readonly EditionRow[]; lin
       <TextField
         label="Whom to ask once it has ended"
         name="contact"
-        maxLength={200}
+        maxLength={CONTACT_MOST}
+        defaultValue={user ? `${user.name}, ${user.email}`.slice(0, CONTACT_MOST) : ""}
         placeholder="Your name, and how you are reached"
         help="Whoever opens the ended link reads this line; nothing else of you is shown."
         error={fields.contact}

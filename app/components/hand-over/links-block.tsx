@@ -1,10 +1,15 @@
-import { Form } from "react-router";
+import { useEffect, useState } from "react";
+import { useFetcher } from "react-router";
+import { Button, SubmitButton } from "~/components/ui/button";
+import { Dialog, DialogFoot } from "~/components/ui/dialog";
 import { BlockHead } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
+import { showToast } from "~/components/ui/toast";
 import type { HandOverView, LinkRow } from "~/lib/edition/views";
 import { formatDateShort, formatMoment, plural } from "~/lib/format";
+import type { HandOverAnswer } from "./answer";
 import { LinkDialog } from "./link-dialog";
 
 const DAY_MS = 86_400_000;
@@ -81,17 +86,43 @@ function Row({ link, now, mayShare }: { link: LinkRow; now: string; mayShare: bo
         ) : null}
       </Td>
       <Td className="max-xl:hidden">{link.sources ? "yes" : "no"}</Td>
-      <Td align="right">
-        {live && mayShare ? (
-          <Form method="post" preventScrollReset>
-            <input type="hidden" name="intent" value="end-link" />
-            <input type="hidden" name="link" value={link.id} />
-            <TextButton type="submit">
-              End now<span className="sr-only"> the link for {link.label}</span>
-            </TextButton>
-          </Form>
-        ) : null}
-      </Td>
+      <Td align="right">{mayShare ? <EndNow link={link} live={live} /> : null}</Td>
     </Tr>
+  );
+}
+
+/** Asks first: an ended link cannot be opened again, and its address cannot be given back. */
+function EndNow({ link, live }: { link: LinkRow; live: boolean }) {
+  const [open, setOpen] = useState(false);
+  const fetcher = useFetcher<HandOverAnswer>();
+  const { state, data } = fetcher;
+  useEffect(() => {
+    if (state !== "idle" || !data) return;
+    if (data.message) showToast({ tone: "failed", text: data.message });
+    else showToast({ tone: "done", text: `The link for ${link.label} has ended.` });
+  }, [state, data, link.label]);
+  // The row stays once its link has ended, so that the answer still finds somebody to say it.
+  if (!live) return null;
+  return (
+    <Dialog
+      open={open}
+      onOpenChange={setOpen}
+      trigger={<TextButton aria-label={`End now the link for ${link.label}`}>End now…</TextButton>}
+      title={`End the link for ${link.label}`}
+      description={`Whoever opens it reads from now on that it has ended. It cannot be opened again; a new link to edition ${link.edition} can be made.`}
+    >
+      <fetcher.Form method="post">
+        <input type="hidden" name="intent" value="end-link" />
+        <input type="hidden" name="link" value={link.id} />
+        <DialogFoot>
+          <SubmitButton kind="stop" pending={state !== "idle"} pendingLabel="Ending">
+            End link
+          </SubmitButton>
+          <Button kind="quiet" onClick={() => setOpen(false)}>
+            Keep it
+          </Button>
+        </DialogFoot>
+      </fetcher.Form>
+    </Dialog>
   );
 }

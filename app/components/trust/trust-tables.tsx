@@ -44,6 +44,11 @@ function Block({
 /** What the narrowest phones leave out; it stands in the CSV. */
 const NARROW = "max-[359px]:hidden";
 
+/** Coverage of one search; null where it found every shape once and so says nothing of itself. */
+function coverageOf({ coverage }: SearchFound): number | null {
+  return coverage === null || coverage.once === coverage.hits ? null : coverage.coverage;
+}
+
 /** Two searches against each other, or the two halves of a lone one. */
 export function SearchTable({
   found,
@@ -54,7 +59,10 @@ export function SearchTable({
   halves: boolean;
   total: number;
 }) {
-  const compared = compareSearches(found);
+  const pair = compareSearches(found);
+  // Where every shape was found once, there is nothing to estimate from.
+  const repeated = (pair?.both ?? 0) > 0 || found.some((search) => coverageOf(search) !== null);
+  const compared = repeated ? pair : null;
   const title = halves ? "First half of the file against the second" : "Searches against each other";
   return (
     <Block
@@ -63,12 +71,7 @@ export function SearchTable({
       head={["search", "frames", "shapes", "coverage"]}
       rows={[
         ...found.map(
-          (search): Cells => [
-            search.name,
-            search.frames,
-            search.places.length,
-            search.coverage?.coverage ?? null,
-          ],
+          (search): Cells => [search.name, search.frames, search.places.length, coverageOf(search)],
         ),
         ...(compared
           ? [
@@ -105,7 +108,7 @@ export function SearchTable({
               <Td align="right">{formatCount(search.frames)}</Td>
               <Td align="right">{formatCount(search.places.length)}</Td>
               <Td align="right" className={NARROW}>
-                {formatPopulation(search.coverage?.coverage ?? null)}
+                {formatPopulation(coverageOf(search))}
               </Td>
             </Tr>
           ))}

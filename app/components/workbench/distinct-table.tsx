@@ -244,11 +244,13 @@ function KeptRow({
         </Td>
         <Td>
           <span className="flex items-center gap-3">
-            <span className="w-18 shrink-0 text-right max-sm:w-9">
+            <span className="w-18 shrink-0 text-right max-sm:w-9 max-[24rem]:w-auto">
               <span className={MID}>found </span>
               {row.found}×
               {row.foundIn ? (
-                <span className="block text-xs whitespace-nowrap text-ink-3">{row.foundIn}</span>
+                <span className="block text-xs whitespace-nowrap text-ink-3 max-sm:whitespace-normal">
+                  {row.foundIn}
+                </span>
               ) : null}
             </span>
             <svg

@@ -16,7 +16,7 @@ export function observableName(observable: Observable, elements: ArrayLike<numbe
   return `${HEAD[observable.kind]} ${atoms}${merged}`;
 }
 
-/** How an observable is made, in words: "distance, r^-6, 6 pairs". */
+/** How an observable is made, in words: "6 equivalent pairs averaged first". */
 export function observableWords(observable: Observable): string {
   const { kind, tuples, set } = observable;
   const count = tuples.length;

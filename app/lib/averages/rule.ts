@@ -5,8 +5,11 @@ export type AverageRule = (typeof AVERAGE_RULES)[number];
 /** What each rule is for, in a chemist's words; the first part names it in tables. */
 export const RULE_WORDS: Record<AverageRule, { name: string; when: string }> = {
   linear: { name: "linear", when: "A plain weighted mean: energies, couplings, shifts, descriptors." },
-  "r-6": { name: "r^-6", when: "A distance as an NOE sees it, tumbling slower than the exchange." },
-  "r-3": { name: "r^-3", when: "Motion faster than tumbling, such as a turning methyl group." },
+  "r-6": {
+    name: "r to the power −6",
+    when: "A distance as an NOE sees it, tumbling slower than the exchange.",
+  },
+  "r-3": { name: "r to the power −3", when: "Motion faster than tumbling, such as a turning methyl group." },
   circular: { name: "circular", when: "An angle that runs all the way round, such as a torsion." },
   rms: { name: "root of mean square", when: "The length of a vector, such as a dipole moment." },
   odd: { name: "linear, both hands", when: "Changes sign in the mirror image, such as optical rotation." },

@@ -60,7 +60,7 @@ function headline(property: PropertyValues, average: Average, temperatureK: numb
     return `${capital(property.name)} is known for ${formatPercent(average.covered, 1)} of the population only and is not averaged.`;
   }
   if (average.state === "zero-distance") {
-    return `${capital(property.name)} holds a distance of 0, which no r^-6 or r^-3 can average: look at its table.`;
+    return `${capital(property.name)} holds a distance of 0, which no mean of r to the power −6 or −3 can take: look at its table.`;
   }
   if (average.value === null) {
     return `The directions of ${property.name} cancel ${at} (R ${fixed(average.resultant, 2)}): it has a distribution, not a mean.`;

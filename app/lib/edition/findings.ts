@@ -2,12 +2,13 @@ import {
   capital,
   formatCount,
   formatEnergy,
-  formatPercent,
   formatTemperature,
   plural,
   pluralWord,
   withUnit,
 } from "../format.ts";
+import { samplingFindings } from "../trust/findings.ts";
+import { samplingCoverage } from "../trust/sampling-coverage.ts";
 import { thermalEnergyKcal } from "../units.ts";
 import { byPopulation, type ConformerRow } from "../workbench/conformers.ts";
 import { joinWords, shareWords } from "../workbench/findings.ts";
@@ -31,7 +32,7 @@ export function editionFindings(content: Facts, rows: readonly ConformerRow[]): 
     windowCut(content),
     leftOut(content),
     withoutEnergy(content),
-    sampling(content),
+    ...sampling(content),
     bounds(content),
   ].filter((finding) => finding !== null);
 }
@@ -134,18 +135,14 @@ function against({ level }: Facts) {
   });
 }
 
-/** Good-Turing coverage and the Chao1 lower bound: the search's own chances, not populations. */
-function sampling({ kept, dropped, sampling: found }: Facts): EditionFinding | null {
-  if (kept.length === 0 || found === null) return null;
-  const frames = plural(kept.length + dropped.length, "frame");
-  const more = Math.max(kept.length, Math.round(found.atLeast));
-  return {
+/** How complete the search is, in the sentence of Trust. */
+function sampling({ kept }: Facts): EditionFinding[] {
+  const coverage = samplingCoverage(kept.map(({ found }) => found));
+  return samplingFindings({ coverage, searches: null }).map(({ title, reason }) => ({
     kind: "know",
-    title: "Sampling.",
-    text:
-      `Coverage of the search ${formatPercent(found.coverage)}: ${found.once === 0 ? "no shape" : pluralWord(found.once, "shape")} of ` +
-      `${formatCount(kept.length)} ${found.once <= 1 ? "was" : "were"} found only once in ${frames}; at least ${formatCount(more)} exist.`,
-  };
+    title,
+    text: reason,
+  }));
 }
 
 function bounds({ kept, dropped }: Facts): EditionFinding | null {

@@ -63,5 +63,5 @@ export function samplingSection(kept: readonly KeptConformer[]): EditionContent[
   const found = samplingCoverage(kept.map((conformer) => conformer.found));
   if (found === null) return null;
   const { hits, once, twice, coverage, richness } = found;
-  return { hits, once, twice, coverage, atLeast: richness.biasCorrected };
+  return { hits, once, twice, coverage, atLeast: richness.estimate };
 }

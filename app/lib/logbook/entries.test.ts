@@ -112,6 +112,7 @@ const WRITTEN: [LogbookEntry, string, string | null][] = [
   [{ type: "column-removed", data: { id: "a", name: "DFT" } }, "Removed the column DFT", null],
   [{ type: "renamed", data: { before: "A", after: "B" } }, "Renamed to B", "before: A"],
   [{ type: "export", data: { siftId: "a", format: "xyz" } }, "Took the distinct set as XYZ", null],
+  [{ type: "export", data: { siftId: "a", format: "averages csv" } }, "Took the averages as CSV", null],
   [{ type: "sign-in", data: {} }, "Signed in", null],
 ];
 

@@ -333,7 +333,13 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
     case "sift-cancelled":
       return { text: "Cancelled a sift", detail: null };
     case "export":
-      return { text: `Took the distinct set as ${entry.data.format.toUpperCase()}`, detail: null };
+      return {
+        text:
+          entry.data.format === "averages csv"
+            ? "Took the averages as CSV"
+            : `Took the distinct set as ${entry.data.format.toUpperCase()}`,
+        detail: null,
+      };
     case "source-downloaded":
       return { text: `Downloaded the source file ${entry.data.file}`, detail: null };
     case "columns-added": {

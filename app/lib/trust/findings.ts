@@ -284,7 +284,16 @@ function chiralityFindings({ chirality, nearMirror }: TrustInput): TrustFinding[
   return found;
 }
 
-function samplingFindings({ coverage, searches }: TrustInput): TrustFinding[] {
+/**
+ * How complete the search is, for Trust and for editions alike: they say the same of the same set. Where every shape was
+ * found once there is no estimate.
+ *
+ * @example samplingFindings({ coverage: samplingCoverage([1, 1, 1]), searches: null })[0]?.title // "How complete the search is cannot be told."
+ */
+export function samplingFindings({
+  coverage,
+  searches,
+}: Pick<TrustInput, "coverage" | "searches">): TrustFinding[] {
   if (coverage === null) return [];
   if (coverage.once === coverage.hits && coverage.hits > 1) {
     return [
