@@ -7,7 +7,7 @@ import { ABSENT, capital, countWord, formatCount, formatEnergy, formatPopulation
 import { marginalCosts } from "~/lib/plan/front";
 import { MAX_ALTERNATIVES, type PlanSet } from "~/lib/plan/plan";
 import type { PlansReport } from "~/lib/plan/report";
-import { formatHours } from "~/lib/plan/words";
+import { costFigure, formatHours } from "~/lib/plan/words";
 
 /** Plans side by side, at most four; the one at hand is washed in magenta. */
 export function AlternativesTable({
@@ -43,7 +43,10 @@ export function AlternativesTable({
         }),
       ];
     }).flat(),
-    row("Cost", "core hours", (k) => (outcomes?.[k] ? formatHours(outcomes[k].cost) : ABSENT)),
+    row("Cost", "core hours", (k) => {
+      const [plan, outcome] = [plans[k]?.plan, outcomes?.[k]];
+      return plan && outcome ? costFigure(plan, outcome) : ABSENT;
+    }),
     row("Waiting", "hours", (k) => (outcomes?.[k] ? formatHours(outcomes[k].wall) : ABSENT)),
     row("Population kept", "%, expected", (k) => formatPopulation(outcomes?.[k]?.kept.mean)),
     row("Population lost", "%, expected", (k) => {

@@ -14,24 +14,33 @@ const WORDS: Record<HoursSource["from"], string> = {
   timings: "Timings of this molecule",
   scaled: "Timings of other sizes",
   rule: "Rule of thumb",
+  known: "Energies known: nothing to compute",
+  unknown: "Not known",
 };
+
+/** What needs no further word. */
+const BARE = ["known", "unknown"] as const;
+const isBare = (from: HoursSource["from"]): from is (typeof BARE)[number] => BARE.some((one) => one === from);
 
 /** Where the core hours of one structure come from: own timings, other sizes, a rule of thumb, or typed in. */
 export function HoursDialog({
   name,
   source,
+  known,
   atoms,
   readOnly,
   onChange,
 }: {
   name: string;
   source: HoursSource;
+  /** The level has energies: they may cost nothing. */
+  known: boolean;
   atoms: number;
   readOnly: boolean;
   onChange: (source: HoursSource) => void;
 }) {
   const [open, setOpen] = useState(false);
-  const text = formatHours(hoursEach(source, atoms).hours);
+  const text = source.from === "unknown" ? "not known" : formatHours(hoursEach(source, atoms).hours);
   if (readOnly) return text;
   return (
     <Dialog
@@ -47,6 +56,7 @@ export function HoursDialog({
     >
       <HoursForm
         source={source}
+        known={known}
         atoms={atoms}
         onDone={(next) => {
           onChange(next);
@@ -59,10 +69,12 @@ export function HoursDialog({
 
 function HoursForm({
   source,
+  known,
   atoms,
   onDone,
 }: {
   source: HoursSource;
+  known: boolean;
   atoms: number;
   onDone: (source: HoursSource) => void;
 }) {
@@ -88,7 +100,9 @@ function HoursForm({
           setFrom(event.currentTarget.value as HoursSource["from"]);
           setError(null);
         }}
-        choices={Object.entries(WORDS).map(([value, label]) => ({ value, label }))}
+        choices={Object.entries(WORDS)
+          .filter(([value]) => known || value !== "known")
+          .map(([value, label]) => ({ value, label }))}
       />
       {from === "rule" ? (
         <SelectField
@@ -101,7 +115,7 @@ function HoursForm({
             label: `${one.label}: ${formatHours(one.hours)} at ${one.atoms} atoms, power ${one.exponent}`,
           }))}
         />
-      ) : (
+      ) : isBare(from) ? null : (
         <TextField
           label={LABELS[from]}
           value={text}
@@ -140,6 +154,8 @@ const HELP: Record<HoursSource["from"], string> = {
   timings: "Numbers above 0 with spaces between them, for example 3.2 3.6 3.4; their mean counts.",
   scaled: "Pairs with spaces between them, for example 20:1.1 32:4.6.",
   rule: "Choose one.",
+  known: "",
+  unknown: "",
 };
 
 function textOf(source: HoursSource): string {
@@ -162,12 +178,16 @@ function read(from: HoursSource["from"], rule: string, text: string, exponent: s
       exponent: readTyped(exponent),
     },
     rule: { from: "rule", rule },
+    known: { from },
+    unknown: { from },
   }[from];
   const parsed = hoursSchema.safeParse(made);
   return parsed.success ? parsed.data : null;
 }
 
 function madeWords(source: HoursSource, atoms: number): string {
+  if (source.from === "known") return "0 core hours: the energies are there.";
+  if (source.from === "unknown") return "The cost leaves this step out until the hours are set.";
   const { hours, exponent, fitted } = hoursEach(source, atoms);
   const power = exponent === null ? "" : `, power ${exponent.toFixed(2)}${fitted ? " fitted" : ""}`;
   return `${formatHours(hours)} core hours for ${plural(atoms, "atom")}${power}.`;

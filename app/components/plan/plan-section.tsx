@@ -160,7 +160,18 @@ function PlanCharts({
   if (figures.members.length === 0 || !plan) return null;
   return (
     <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2" aria-busy={report === null || band === null}>
-      {report ? <CostChart set={set} report={report} /> : <Skeleton className="h-96 w-full" />}
+      {report === null ? (
+        <Skeleton className="h-96 w-full" />
+      ) : report.outcomes.some(({ cost }) => cost > 0) ? (
+        <CostChart set={set} report={report} />
+      ) : (
+        <StatePanel title="No cost to draw">
+          <p>
+            The energies of these steps are known, or their core hours are not. Set core hours under Each to
+            see what a share of the population costs.
+          </p>
+        </StatePanel>
+      )}
       {band ? (
         <FirstWindowChart
           band={band}

@@ -19,8 +19,9 @@ import {
   withUnit,
 } from "~/lib/format";
 import type { PlanOutcome, StepOutcome } from "~/lib/plan/evaluate";
+import { defaultHours } from "~/lib/plan/hours";
 import { type Cut, MAX_STEPS, type Plan, type PlanStep } from "~/lib/plan/plan";
-import { formatHours, planCsv } from "~/lib/plan/words";
+import { costFigure, formatHours, planCsv } from "~/lib/plan/words";
 import { HoursDialog } from "./hours-dialog";
 
 const BAR_PX = 120;
@@ -140,7 +141,7 @@ export function StepsTable({
                 {plural(plan.slots, "slot")} of {plural(plan.coresPerSlot, "core")},{" "}
                 {formatPercent(plan.failRate)} repeated
                 <span className="sm:hidden">
-                  {outcome ? `; ${withUnit(formatHours(outcome.cost), "core hours")}` : ""}
+                  {outcome ? `; ${withUnit(costFigure(plan, outcome), "core hours")}` : ""}
                 </span>
               </span>
             </Td>
@@ -149,7 +150,7 @@ export function StepsTable({
             <Td />
             <Td className="max-sm:hidden" />
             <Td className="max-sm:hidden">
-              <b>{outcome ? formatHours(outcome.cost) : ABSENT}</b>
+              <b>{outcome ? costFigure(plan, outcome) : ABSENT}</b>
             </Td>
             <Td align="right" wrap>
               {outcome
@@ -169,9 +170,15 @@ function nextStep(plan: Plan): PlanStep {
     level: null,
     name: "next level",
     cut: { by: "share", share: last?.cut.by === "share" ? last.cut.share : 0.95 },
-    hours: { from: "rule", rule: "mp2-energy" },
+    hours: defaultHours("next level", false),
     sigma: 0.3,
   };
+}
+
+/** Another name: hours that only followed from the old one follow the new one. */
+function renamed(step: PlanStep, name: string): Partial<PlanStep> {
+  const followed = JSON.stringify(step.hours) === JSON.stringify(defaultHours(step.name, false));
+  return followed ? { name, hours: defaultHours(name, false) } : { name };
 }
 
 function StepRow({
@@ -194,6 +201,7 @@ function StepRow({
   onRemove?: () => void;
 }) {
   const known = levels.find((level) => level.id === step.level) ?? null;
+  const open = step.hours.from === "unknown";
   return (
     <Tr>
       <Td wrap>
@@ -209,7 +217,8 @@ function StepRow({
               value={known?.id ?? ""}
               onChange={(event) => {
                 const level = levels.find((one) => one.id === event.currentTarget.value);
-                onChange(level ? { level: level.id, name: level.name } : { level: null, name: "next level" });
+                const name = level?.name ?? "next level";
+                onChange({ level: level?.id ?? null, name, hours: defaultHours(name, level !== undefined) });
               }}
               choices={[
                 ...levels.map(({ id, name }) => ({ value: id, label: name })),
@@ -224,7 +233,9 @@ function StepRow({
           ) : null}
         </span>
         {known ? (
-          <span className="block text-xs text-ink-3">energies known</span>
+          <span className="block text-xs text-ink-3">
+            {step.hours.from === "known" ? "energies known" : "energies known, costed as if they were not"}
+          </span>
         ) : (
           <span className="mt-2 grid gap-2">
             {readOnly ? null : (
@@ -232,7 +243,7 @@ function StepRow({
                 label="Name of the level"
                 value={step.name}
                 maxLength={120}
-                onChange={(event) => onChange({ name: event.currentTarget.value })}
+                onChange={(event) => onChange(renamed(step, event.currentTarget.value))}
               />
             )}
             <NumberField
@@ -260,11 +271,12 @@ function StepRow({
             <HoursDialog
               name={step.name}
               source={step.hours}
+              known={known !== null}
               atoms={atoms}
               readOnly={readOnly}
               onChange={(hours) => onChange({ hours })}
             />{" "}
-            core hours each{outcome ? `, ${formatHours(outcome.cost)} together` : ""}
+            core hours each{outcome && !open ? `, ${formatHours(outcome.cost)} together` : ""}
           </span>
         </span>
       </Td>
@@ -284,6 +296,7 @@ function StepRow({
         <HoursDialog
           name={step.name}
           source={step.hours}
+          known={known !== null}
           atoms={atoms}
           readOnly={readOnly}
           onChange={(hours) => onChange({ hours })}
@@ -291,8 +304,8 @@ function StepRow({
       </Td>
       <Td className="max-sm:hidden">
         <span className="flex items-center gap-3">
-          <span className="w-14 text-right">{outcome ? formatHours(outcome.cost) : ABSENT}</span>
-          {outcome ? (
+          <span className="w-14 text-right">{outcome && !open ? formatHours(outcome.cost) : ABSENT}</span>
+          {outcome && outcome.cost > 0 ? (
             <svg width={BAR_PX} height="12" aria-hidden="true" className="max-xl:hidden">
               <rect
                 x="0.5"

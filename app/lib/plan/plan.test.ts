@@ -3,11 +3,11 @@ import { describe, expect, it } from "vitest";
 import { compareLevels } from "../levels/compare.ts";
 import { evaluatePlan, type PlanData } from "./evaluate.ts";
 import { marginalCosts, planFront } from "./front.ts";
-import { hoursEach, RULES } from "./hours.ts";
-import { type Plan, planSetSchema } from "./plan.ts";
+import { defaultHours, hoursEach, RULES } from "./hours.ts";
+import { type Plan, type PlanStep, planSetSchema } from "./plan.ts";
 import { planReport } from "./report.ts";
 import { drawsOfPlan, firstPlans } from "./start.ts";
-import { formatHours, planAssumptions, planCsv, planFinding, planText } from "./words.ts";
+import { costFigure, formatHours, planAssumptions, planCsv, planFinding, planText } from "./words.ts";
 
 const T = 298.15;
 const CHEAP = [0.3, 0, 1.4, 1.1, 2.9, 2.5];
@@ -302,6 +302,61 @@ describe("words", () => {
   });
 });
 
+describe("hours that nobody has set", () => {
+  it("are none for known energies, else follow the kind of the name, else are not known", () => {
+    expect(defaultHours("UFF", true)).toEqual({ from: "known" });
+    expect(defaultHours("UFF", false)).toEqual({ from: "rule", rule: "force-field" });
+    expect(defaultHours("PM7", false)).toEqual({ from: "rule", rule: "semi-empirical" });
+    expect(defaultHours("HF/STO-3G", false)).toEqual({ from: "rule", rule: "hf-optimise" });
+    expect(defaultHours("PBE0", false)).toEqual({ from: "rule", rule: "dft-optimise" });
+    expect(defaultHours("MP2", false)).toEqual({ from: "rule", rule: "mp2-energy" });
+    expect(defaultHours("CCSD(T)/CBS", false)).toEqual({ from: "rule", rule: "cc-energy" });
+    for (const name of ["next level", "experiment"])
+      expect(defaultHours(name, false)).toEqual({ from: "unknown" });
+    for (const name of ["UFF", "PM7", "HF", "PBE0", "MP2", "CCSD(T)"])
+      expect(hoursEach(defaultHours(name, false), 40).hours).toBeGreaterThan(0);
+  });
+
+  it("cost nothing where the energies are known, and the plan says so", () => {
+    const free = plan({ steps: [step({ hours: { from: "known" }, cut: { by: "window", kcal: 1.1 } })] });
+    const report = planReport([free], 0, [data()]);
+    const outcome = report.outcomes[0]!;
+    expect([outcome.cost, outcome.wall]).toEqual([0, 0]);
+    const finding = planFinding(free, "Cheap", outcome, report.front);
+    expect(plain(finding.text)).toContain("3 structures, energies known, 0 core hours, about 86 %");
+    expect(plain(finding.second)).toBe("All energies are taken as exact.");
+    expect(plain(planText(free, "Cheap", outcome, 6))).toContain("All energies are known: 0 core hours.");
+    expect(planAssumptions(free, outcome, report, 32).some((a) => a.what.includes("core hours"))).toBe(false);
+  });
+
+  it("are asked for where they are not known, and left out of what is known", () => {
+    const open = step({ name: "Next", hours: { from: "unknown" } });
+    const cost = (steps: PlanStep[]) => {
+      const p = plan({ steps });
+      const report = planReport([p], 0, [data({ known: steps.map(() => REFERENCE) })]);
+      const outcome = report.outcomes[0]!;
+      return {
+        figure: costFigure(p, outcome),
+        text: plain(planFinding(p, "Cheap", outcome, report.front).text),
+        asked: planAssumptions(p, outcome, report, 32)[0]!,
+        paragraph: plain(planText(p, "Cheap", outcome, 6)),
+        csv: planCsv(p, "Cheap", outcome),
+      };
+    };
+    const alone = cost([open]);
+    expect(alone.figure).toBe("not known");
+    expect(alone.text).toContain("6 structures, core hours not known,");
+    expect(alone.asked).toMatchObject({ origin: "not known", what: "Core hours for a structure at Next" });
+    expect(alone.paragraph.endsWith("The core hours at Next are not known.")).toBe(true);
+    expect(alone.csv).toContain("1,Cheap,,Next,known,6,6,6,6,,,,");
+    const both = cost([step(), open]);
+    expect(both.figure).toBe("at least 21.2");
+    expect(both.paragraph).toContain(
+      "The core hours at Next are not known. Without them, estimated cost 21.2",
+    );
+  });
+});
+
 describe("a first set of plans", () => {
   it("goes from the first level to the last, or to one that is predicted", () => {
     const options = { sift: null, temperatureK: T, n: 31 };
@@ -314,7 +369,7 @@ describe("a first set of plans", () => {
     );
     expect(planSetSchema.parse(two)).toEqual(two);
     expect(two.plans.map((one) => one.name)).toEqual(["Narrow", "Middle", "Wide", "Everything"]);
-    expect(two.plans[1]!.plan.steps[0]).toMatchObject({ level: "b", name: "B" });
+    expect(two.plans[1]!.plan.steps[0]).toMatchObject({ level: "b", name: "B", hours: { from: "known" } });
     expect(firstPlans([{ id: "a", name: "A" }], options).plans[0]!.plan.steps[0]!.level).toBeNull();
     expect(() => firstPlans([], options)).toThrow(RangeError);
   });

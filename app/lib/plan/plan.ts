@@ -21,6 +21,10 @@ export const hoursSchema = z.discriminatedUnion("from", [
   }),
   /** A rule of thumb by its name in `RULES`. */
   z.object({ from: z.literal("rule"), rule: z.string().max(40) }),
+  /** The energies are there: nothing is left to compute. */
+  z.object({ from: z.literal("known") }),
+  /** Nobody has said: the cost leaves the step out, and says so. */
+  z.object({ from: z.literal("unknown") }),
 ]);
 export type HoursSource = z.infer<typeof hoursSchema>;
 

@@ -1,9 +1,9 @@
 import { DRAWS } from "../trust/energy-draws.ts";
-import type { Cut, HoursSource, Plan, PlanSet } from "./plan.ts";
+import { defaultHours } from "./hours.ts";
+import type { Cut, Plan, PlanSet } from "./plan.ts";
 
 /** Seed of a new plan; stored with it. */
 export const PLAN_SEED = 412;
-const FIRST_HOURS: HoursSource = { from: "rule", rule: "dft-optimise" };
 /** Our own starting values. */
 const FIRST_SIGMA = 0.5;
 const KNOWN_SIGMA = 0.3;
@@ -30,7 +30,7 @@ export function firstPlans(
         level: next?.id ?? null,
         name: next?.name ?? "next level",
         cut,
-        hours: FIRST_HOURS,
+        hours: defaultHours(next?.name ?? "", next !== null),
         sigma: FIRST_SIGMA,
       },
     ],

@@ -29,6 +29,25 @@ export function formatHours(hours: number): string {
 const coreHours = (hours: number) => withUnit(formatHours(hours), "core hours");
 const kcal = (value: number) => withUnit(formatEnergy(value), "kcal/mol");
 
+/**
+ * What a plan costs, in core hours: 0 where all its energies are known; "not known" or "at least" where hours of a step are.
+ *
+ * @example costFigure(plan, outcome) // "at least 10.6"
+ */
+export function costFigure(plan: Plan, outcome: PlanOutcome): string {
+  if (!plan.steps.some(({ hours }) => hours.from === "unknown")) return formatHours(outcome.cost);
+  return outcome.cost > 0 ? `at least ${formatHours(outcome.cost)}` : "not known";
+}
+
+/** Nothing is left to compute. */
+const costsNothing = (plan: Plan) => plan.steps.every(({ hours }) => hours.from === "known");
+
+function costWords(plan: Plan, outcome: PlanOutcome): string {
+  if (costsNothing(plan)) return `energies known, ${coreHours(0)}`;
+  const figure = costFigure(plan, outcome);
+  return figure === "not known" ? "core hours not known" : withUnit(figure, "core hours");
+}
+
 /** What the plan says first. */
 export function planFinding(plan: Plan, startName: string, outcome: PlanOutcome, front: FrontPoint[] | null) {
   const parts = plan.steps.map((step, s) => {
@@ -47,12 +66,12 @@ export function planFinding(plan: Plan, startName: string, outcome: PlanOutcome,
   const range = `${formatPercent(kept.low, 1)} to ${formatPercent(kept.high, 1)}`;
   return {
     text:
-      `Carry ${parts.join(", then ")}: ${joinCounts(counts)}, ${coreHours(outcome.cost)}, ` +
+      `Carry ${parts.join(", then ")}: ${joinCounts(counts)}, ${costWords(plan, outcome)}, ` +
       `about ${shareWords(kept.mean)} of the final population.`,
     second:
       (kept.high - kept.low < 1e-9
         ? "All energies are taken as exact."
-        : `With the errors assumed below, ${range}.`) + furtherWords(outcome, front),
+        : `With the errors assumed below, ${range}.`) + furtherWords(plan, outcome, front),
   };
 }
 
@@ -63,7 +82,9 @@ function joinCounts(counts: readonly string[]): string {
 }
 
 /** What 99 % would cost beyond this plan, from the cheapest windows that reach it. */
-function furtherWords(outcome: PlanOutcome, front: FrontPoint[] | null): string {
+function furtherWords(plan: Plan, outcome: PlanOutcome, front: FrontPoint[] | null): string {
+  // Without a cost, or with a part of it, there is nothing to weigh.
+  if (costsNothing(plan) || plan.steps.some(({ hours }) => hours.from === "unknown")) return "";
   const target = 0.99;
   const at = front?.find((point) => point.kept >= target);
   if (!at || outcome.kept.mean >= target) return "";
@@ -88,14 +109,26 @@ export function planAssumptions(
   report: PlansReport,
   atoms: number,
 ): Assumption[] {
-  const hours = plan.steps.map((step, s): Assumption => {
+  const hours = plan.steps.flatMap((step, s): Assumption[] => {
+    if (step.hours.from === "known") return [];
+    if (step.hours.from === "unknown") {
+      return [
+        {
+          origin: "not known",
+          what: `Core hours for a structure at ${step.name}`,
+          wrong: "Set them in the table of the steps: until then the cost leaves this step out.",
+        },
+      ];
+    }
     const { hoursEach, cost, exponent, exponentFitted } = outcome.steps[s]!;
     const other = hoursEach * 2;
-    return {
-      origin: originOf(step.hours),
-      what: `${coreHours(hoursEach)} for a structure at ${step.name}`,
-      wrong: `${hoursWords(step.hours, exponent, exponentFitted, atoms)} At ${formatHours(other)} the plan costs ${formatHours(outcome.cost + cost)}.`,
-    };
+    return [
+      {
+        origin: originOf(step.hours),
+        what: `${coreHours(hoursEach)} for a structure at ${step.name}`,
+        wrong: `${hoursWords(step.hours, exponent, exponentFitted, atoms)} At ${formatHours(other)} the plan costs ${formatHours(outcome.cost + cost)}.`,
+      },
+    ];
   });
   const errors = report.variants.map((variant): Assumption => {
     const at = variant.of;
@@ -142,7 +175,12 @@ function originOf(source: HoursSource): Assumption["origin"] {
   return source.from === "typed" ? "typed in" : "your timings";
 }
 
-function hoursWords(source: HoursSource, exponent: number | null, fitted: boolean, atoms: number): string {
+function hoursWords(
+  source: Exclude<HoursSource, { from: "known" | "unknown" }>,
+  exponent: number | null,
+  fitted: boolean,
+  atoms: number,
+): string {
   if (source.from === "typed") return "As typed.";
   if (source.from === "timings") return `Mean of ${plural(source.hours.length, "finished one")}.`;
   if (source.from === "rule") {
@@ -163,7 +201,9 @@ export function planText(plan: Plan, startName: string, outcome: PlanOutcome, of
       windowKcal === null
         ? `All conformers (${number})`
         : `${s === 0 ? "All conformers" : "Those"} within ${kcal(windowKcal)} of the lowest at ${before} (${number} of ${s === 0 ? formatCount(of) : formatCount(Math.round(outcome.steps[s - 1]!.carried.mean))})`;
-    return `${who} are to be computed at ${step.name}.`;
+    return step.hours.from === "known"
+      ? `${who} are carried to ${step.name}, where their energies are known.`
+      : `${who} are to be computed at ${step.name}.`;
   });
   const errors = plan.steps
     .flatMap((step, s) => {
@@ -178,8 +218,17 @@ export function planText(plan: Plan, startName: string, outcome: PlanOutcome, of
     errors.length > 0
       ? `With independent normal errors of ${errors.join(" and ")} ${drawn} ${keeps} (95 % range ${formatPercent(kept.low, 1)} to ${formatPercent(kept.high, 1)}).`
       : `With the energies as they are ${keeps}.`;
-  const cost = `Estimated cost ${coreHours(outcome.cost)}, ${formatPercent(plan.failRate)} repeats included; ${withUnit(formatHours(outcome.wall), "h")} on ${plural(plan.slots, "slot")} of ${plural(plan.coresPerSlot, "core")}.`;
+  const cost = costSentence(plan, outcome);
   return [...sentences, sure, cost].join(" ");
+}
+
+function costSentence(plan: Plan, outcome: PlanOutcome): string {
+  if (costsNothing(plan)) return `All energies are known: ${coreHours(0)}.`;
+  const open = plan.steps.filter(({ hours }) => hours.from === "unknown").map(({ name }) => name);
+  const without = open.length > 0 ? `The core hours at ${open.join(" and ")} are not known.` : "";
+  if (outcome.cost === 0 && without) return without;
+  const rest = without ? `${without} Without them, estimated` : "Estimated";
+  return `${rest} cost ${coreHours(outcome.cost)}, ${formatPercent(plan.failRate)} repeats included; ${withUnit(formatHours(outcome.wall), "h")} on ${plural(plan.slots, "slot")} of ${plural(plan.coresPerSlot, "core")}.`;
 }
 
 /** The plan as a table: RFC 4180, one row a step, then the sum. */
@@ -196,16 +245,16 @@ export function planCsv(plan: Plan, startName: string, outcome: PlanOutcome): st
       o.carried.mean,
       o.carried.low,
       o.carried.high,
-      o.hoursEach,
-      o.cost,
-      o.wall,
+      ...(step.hours.from === "unknown" ? [null, null, null] : [o.hoursEach, o.cost, o.wall]),
       100 * o.kept.mean,
       100 * o.kept.low,
       100 * o.kept.high,
     ];
   });
   const { kept } = outcome;
-  const sum = ["", "together", null, "", "", null, null, null, null, null, outcome.cost, outcome.wall];
+  const open = plan.steps.some(({ hours }) => hours.from === "unknown");
+  const total = open ? [null, null] : [outcome.cost, outcome.wall];
+  const sum = ["", "together", null, "", "", null, null, null, null, null, ...total];
   return toCsv(
     [
       "step",
