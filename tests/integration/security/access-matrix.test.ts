@@ -276,6 +276,7 @@ const FORM_ACTS: Act[] = [
     ["hold", { frame: "999", reason: "r" }, 404],
     ["release", { frame: "999", reason: "r" }, 404],
     ["split-off", { frame: "999" }, 404],
+    ["reread", { energyFrom: "key:none", energyUnit: "kcal/mol", level: "A" }, 422],
     ["rename", { name: "Butane" }, 200],
   ].map(([intent, fields, reached]) =>
     act("/ensembles/:id/intake", intent, fields, ANALYSTS(Number(reached))),
