@@ -8,6 +8,7 @@ import { exportLogbook, loadLogbook, loadTeamLogbook } from "~/services/logbook/
 import { writeRemark } from "~/services/logbook/write-remark.server";
 import { freeze, link, makeSifted, personOf } from "../factories/editions";
 import { makeMember } from "../factories/people";
+import { makeEnsembleRow } from "../factories/rows";
 import { makeLab, withJobs } from "../factories/upload";
 import { call } from "../setup/app";
 
@@ -86,6 +87,24 @@ describe("the logbook", () => {
     const answer = await call(path, { cookie: reader.cookie });
     expect(answer.headers.get("content-type")).toContain("text/csv");
     expect((await call(path)).status).toBe(404);
+  });
+
+  it("of an example tells a guest how it came about, and nothing of links or of what members try", async () => {
+    const example = await makeEnsembleRow(lab.team.id, { example: true });
+    const here = { teamId: lab.team.id, ensembleId: example };
+    const product = { userId: null, tokenId: null };
+    const sift = { type: "sift", data: { siftId: "s", recipe: {}, kept: 1 } };
+    const opened = { type: "link-opened", data: { label: "Partner lab" } };
+    for (const { type, data } of [sift, opened])
+      await db.insert(logbook).values({ ...here, createdAt: new Date(), ...product, type, data });
+    await db
+      .insert(logbook)
+      .values({ ...here, createdAt: new Date(), userId: reader.id, tokenId: null, ...sift });
+    const seen = await loadLogbook({ actor: { kind: "anonymous" }, ensembleId: example });
+    expect(seen.rows.map(({ type, by }) => [type, by])).toEqual([["sift", "product"]]);
+    expect(seen.total).toBe(1);
+    const csv = await exportLogbook({ actor: { kind: "anonymous" }, ensembleId: example, filter: NO_FILTER });
+    expect(csv).not.toContain("Partner lab");
   });
 
   it("of the whole team is for its members alone, remarks included", async () => {

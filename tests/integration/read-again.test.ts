@@ -1,0 +1,58 @@
+import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { loadIntake } from "~/services/ensembles/load-intake.server";
+import { personOf } from "../factories/editions";
+import { makeMember } from "../factories/people";
+import { BUTANE, frame, makeLab, takenIn, withJobs } from "../factories/upload";
+import { call } from "../setup/app";
+
+let runner: Awaited<ReturnType<typeof withJobs>>;
+let lab: Awaited<ReturnType<typeof makeLab>>;
+let analyst: Awaited<ReturnType<typeof makeMember>>;
+let reader: Awaited<ReturnType<typeof makeMember>>;
+let id = "";
+
+beforeAll(async () => {
+  runner = await withJobs();
+  lab = await makeLab();
+  analyst = await makeMember(lab.team.id, "analyst");
+  reader = await makeMember(lab.team.id, "reader");
+  const content = frame("energy=-1.5", BUTANE) + frame("energy=-1.25", BUTANE);
+  const fields = { level: "First", energyUnit: "kcal/mol", energyFrom: "key:energy" };
+  id = (await takenIn(lab.token, [{ name: "again.xyz", content }], fields)).id;
+});
+afterAll(() => runner.stop());
+
+const levels = async () => {
+  const answer = await call(`/api/v1/ensembles/${id}`, { token: lab.token });
+  return ((await answer.json()) as { levels: { name: string; unit: string }[] }).levels;
+};
+const send = (cookie: string, form: Record<string, string>) =>
+  call(`/ensembles/${id}/intake`, { cookie, form: { intent: "reread", ...form } });
+
+describe("reading again from the page of intake", () => {
+  it("puts a wrong unit and level right", async () => {
+    const form = { level: "Second", energyUnit: "hartree", energyFrom: "key:energy", energyKind: "free" };
+    expect((await send(analyst.cookie, { ...form, energyTemperature: "298.15" })).status).toBe(200);
+    expect(await levels()).toMatchObject([{ name: "Second", unit: "hartree" }]);
+  });
+
+  it("refuses what is no answer, in words, and changes nothing", async () => {
+    const refused = await send(analyst.cookie, { level: "Third", energyFrom: "energy" });
+    expect(refused.status).toBe(400);
+    expect(await refused.text()).toContain("Write key:NAME, field:NAME, number:N or none.");
+    expect(await levels()).toMatchObject([{ name: "Second", unit: "hartree" }]);
+  });
+
+  it("is not for readers", async () => {
+    expect((await send(reader.cookie, { level: "Third", energyUnit: "eV" })).status).toBe(403);
+    expect(await levels()).toMatchObject([{ name: "Second", unit: "hartree" }]);
+  });
+
+  it("asks again what is left empty", async () => {
+    expect((await send(analyst.cookie, { level: "Second", energyUnit: "" })).status).toBe(200);
+    const { questions } = await loadIntake({ actor: personOf(analyst.id), ensembleId: id });
+    expect(questions.some(({ code, answered }) => code === "energy-unit" && answered === undefined)).toBe(
+      true,
+    );
+  });
+});
