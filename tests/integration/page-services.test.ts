@@ -68,7 +68,7 @@ describe("the pages of an ensemble", () => {
     const intake = await loadIntake({ actor, ensembleId });
     expect(intake.strip).toBe("ahra");
     expect(intake.held).toMatchObject([
-      { number: 2, line: 17, state: "held", releasable: false, showable: true },
+      { number: 2, line: 17, state: "held", releasable: false, showable: false },
     ]);
     expect(intake.remarked).toMatchObject([{ number: 3, state: "remarked", showable: true }]);
     expect(intake.messages.map((message) => message.code)).toEqual(["X22", "E10", "E13"]);
