@@ -131,6 +131,7 @@ function Filled({
       </p>
       <PropertyTable
         averaged={averaged}
+        counters={view.counters}
         groups={perAtom.map(({ quantity, unit, list }) => ({
           quantity,
           unit,

@@ -27,6 +27,7 @@ import type { WeighedConformers } from "./use-weighed";
 /** Every property by its own rule: one column a temperature, spread of the shapes, uncertainty of the level. */
 export function PropertyTable({
   averaged,
+  counters,
   groups,
   weighed,
   sigma,
@@ -35,6 +36,8 @@ export function PropertyTable({
   csv,
 }: {
   averaged: Averaged;
+  /** Columns that only count frames up, by name. */
+  counters: readonly string[];
   /** Per-atom quantities, one row each; their atoms stand in a table of their own. */
   groups: readonly { quantity: string; unit: string | null; groups: number; covered: number }[];
   weighed: WeighedConformers;
@@ -113,6 +116,14 @@ export function PropertyTable({
                 <Covered covered={group.covered} refused={group.covered < 0.9} />
               </Td>
               <Td className="text-ink-2 max-sm:hidden">{group.unit ?? ""}</Td>
+            </Tr>
+          ))}
+          {counters.map((name) => (
+            <Tr key={name} className="text-ink-3">
+              <Td wrap colSpan={averaged.temperatures.length + 5}>
+                <span className="[overflow-wrap:anywhere]">{name}</span>
+                <span className="block text-xs">a counter, not averaged</span>
+              </Td>
             </Tr>
           ))}
         </tbody>

@@ -5,7 +5,9 @@ export interface AveragesView {
   /** Null where there is no finished sift. */
   siftId: string | null;
   properties: PropertyValues[];
-  /** Property columns of the ensemble in all; more than the page carries are in the file. */
+  /** Names of columns that only count frames up: shown, not averaged. */
+  counters: string[];
+  /** Property columns of the ensemble in all, counters aside; more than the page carries are in the file. */
   total: number;
   /** Energies of the other levels over the conformers: kcal/mol above the lowest that has one; null is missing. */
   levels: { id: string; energies: (number | null)[] }[];

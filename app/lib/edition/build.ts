@@ -8,6 +8,7 @@ import { distinctPopulations } from "../thermo/populations.ts";
 import { CONSTANTS_YEAR } from "../units.ts";
 import { joinWords } from "../workbench/findings.ts";
 import type { EditionContent, EditionPopulations } from "./content.ts";
+import { averagedProperties } from "./counters.ts";
 import { shapeExtent } from "./extent.ts";
 import { editionFindings } from "./findings.ts";
 import { methodsText } from "./methods-text.ts";
@@ -158,14 +159,14 @@ function methodsOf(facts: Omit<EditionContent, "words" | "findings">, version: s
 }
 
 /** Sentences of the methods text on what the edition holds beside populations. */
-function furtherSentences({
-  averages,
-  comparisons,
-  level,
-}: Pick<EditionContent, "averages" | "comparisons" | "level">) {
+function furtherSentences(
+  facts: Pick<EditionContent, "averages" | "columns" | "comparisons" | "kept" | "level">,
+) {
+  const { comparisons, level } = facts;
+  const averages = averagedProperties(facts);
   const rules = [...new Set((averages ?? []).map(({ rule }) => RULE_WORDS[rule].name))];
   return [
-    averages === null
+    averages === null || averages.length === 0
       ? null
       : `${plural(averages.length, "property was", "properties were")} averaged over the conformers with these populations ` +
         `(${rules.length === 1 ? "rule" : "rules"}: ${joinWords(rules)}); what covers less than 90 % of the population is not averaged.`,

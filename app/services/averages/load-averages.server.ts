@@ -28,17 +28,21 @@ export async function loadAverages(options: {
   ]);
   const kept = sift?.result?.kept ?? null;
   if (sift === null || kept === null)
-    return { siftId: null, properties: [], total: found.length, levels: [] };
+    return { siftId: null, properties: [], counters: [], total: found.length, levels: [] };
+  const strip = await frameStrip(ensemble.id);
+  const all = await findColumns(ensemble.id, strip);
+  const counting = new Set(all.filter(({ counter }) => counter).map(({ id }) => id));
+  const averaged = found.filter(({ id }) => !counting.has(id));
   const carried =
     options.properties === false
       ? []
-      : found.slice(0, Math.max(1, Math.floor(MAX_VALUES / Math.max(1, kept.length))));
-  const strip = await frameStrip(ensemble.id);
-  const levels = toLevels(await findColumns(ensemble.id, strip));
+      : averaged.slice(0, Math.max(1, Math.floor(MAX_VALUES / Math.max(1, kept.length))));
+  const levels = toLevels(all);
   return {
     siftId: sift.id,
     properties: await propertyValues(ensemble, kept, carried),
-    total: found.length,
+    counters: found.filter(({ id }) => counting.has(id)).map(({ name }) => name),
+    total: averaged.length,
     levels: await Promise.all(
       levels
         .filter((level) => level.id !== sift.recipe.level)

@@ -1,4 +1,5 @@
 import { citationBibtex, citationCff, citationText } from "../../lib/edition/citation.ts";
+import { averagedProperties } from "../../lib/edition/counters.ts";
 import { editionRows } from "../../lib/edition/rows.ts";
 import { shownRows } from "../../lib/edition/shown.ts";
 import type { EditionShape, EditionView, VerifiedView } from "../../lib/edition/views.ts";
@@ -79,7 +80,7 @@ export async function toEditionView(
     methods: content.words.methods.split("\n"),
     caution: content.caution,
     findings: content.findings,
-    averages: content.averages,
+    averages: averagedProperties(content),
     rows: editionRows(content).slice(0, MOST_ROWS),
     conformers: content.kept.length,
     extents: content.kept.slice(0, MOST_ROWS).map(({ extent }) => extent),

@@ -1,11 +1,14 @@
 import { asc, eq, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns } from "../../db/schema.server.ts";
+import { countsUp } from "../../lib/averages/counter.ts";
 import type { ColumnData } from "../../lib/column-data.ts";
-import { unpackColumn } from "../../lib/column-data.ts";
+import { unpackColumn, unpackPresence } from "../../lib/column-data.ts";
 import { DomainError } from "../../lib/errors.ts";
 import type { EnergyKind, LevelView } from "../../lib/views.ts";
 import { countPresent } from "./accepted-frames.server.ts";
+
+const HEAD_FRAMES = 32;
 
 /** A column with the counts that its numbers give, without the numbers. */
 export interface FoundColumn {
@@ -28,6 +31,8 @@ export interface FoundColumn {
   atom: number | null;
   origin: string | null;
   definition: (typeof columns.$inferSelect)["definition"];
+  /** True for a property that only counts frames up: a label, which nobody averages. */
+  counter: boolean;
   /** Accepted frames with and without a value. */
   count: number;
   missing: number;
@@ -57,17 +62,30 @@ export async function findColumns(ensembleId: string, strip: string): Promise<Fo
       atom: columns.atom,
       origin: columns.origin,
       definition: columns.definition,
+      // Enough of the doubles to tell a counter.
+      head: sql<Buffer>`substring(${columns.data}, 1, ${8 * Math.min(HEAD_FRAMES, strip.length)})`,
       // Only the presence bits behind the doubles.
       bits: sql<Buffer>`substring(${columns.data}, ${8 * strip.length + 1})`,
     })
     .from(columns)
     .where(eq(columns.ensembleId, ensembleId))
     .orderBy(asc(columns.kind), asc(columns.ordinal));
-  return rows.map(({ bits, dataSha, ...row }) => ({
+  return rows.map(({ head, bits, dataSha, ...row }) => ({
     ...row,
+    counter: row.kind === "property" && row.unit === null && headCountsUp(head, bits),
     dataSha: dataSha ?? Buffer.alloc(32),
     ...countPresent(bits, strip),
   }));
+}
+
+/** Whether the first frames of a packed column count up. */
+function headCountsUp(head: Buffer, bits: Buffer): boolean {
+  const frames = Array.from({ length: Math.floor(head.length / 8) }, (_, k) => k + 1);
+  const present = unpackPresence(bits, frames.length);
+  return countsUp(
+    frames,
+    frames.map((_, k) => (present[k] === 1 ? head.readDoubleLE(8 * k) : null)),
+  );
 }
 
 /** The energy columns, as the page and the API list them. */

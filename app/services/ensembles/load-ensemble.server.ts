@@ -90,7 +90,7 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
     bonds: [...graph.bonds],
     bondTable: statedTable(ensemble.bondTable, graph),
     levels: toLevels(columns),
-    properties: columns.filter((column) => column.kind === "property").length,
+    properties: columns.filter((column) => column.kind === "property" && !column.counter).length,
     torsions: columns.flatMap(({ id, name, definition }) => {
       const atoms =
         definition?.type === "observable" && definition.observable === "torsion" && definition.atoms[0];
