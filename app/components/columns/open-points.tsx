@@ -4,6 +4,7 @@ import { TextField } from "~/components/ui/field";
 import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
 import { TextButton } from "~/components/ui/text-link";
 import type { ColumnsPreview } from "~/lib/api/schemas";
+import { formatCount, formatEnergy, MINUS, withUnit } from "~/lib/format";
 
 type Question = ColumnsPreview["questions"][number];
 
@@ -89,15 +90,30 @@ function PointCard({
             title={option.text}
             reason={option.detail}
           >
-            {option.values ? (
-              <span className="text-right whitespace-nowrap text-ink-2">
-                {option.values.filter((value) => value !== null).join("  ")}
-              </span>
-            ) : null}
+            <OptionFigures option={option} />
           </QuestionOption>
         ))
       )}
     </QuestionCard>
+  );
+}
+
+/** The numbers of the first frames, and the spread that a unit would mean. */
+function OptionFigures({ option }: { option: Question["options"][number] }) {
+  const values = (option.values ?? []).filter((value) => value !== null);
+  // A candidate's spread belongs to the unit proposed for it; here only a unit's own is asked about.
+  const spread = option.values === undefined ? option.spreadKcal : null;
+  if (values.length === 0 && typeof spread !== "number") return null;
+  return (
+    <span className="figures text-right whitespace-nowrap text-ink-2">
+      {values.map((value) => value.replaceAll("-", MINUS)).join("  ")}
+      {typeof spread === "number" ? (
+        <>
+          <span className="text-ink-3">spread </span>
+          {withUnit(spread > 1000 ? formatCount(spread) : formatEnergy(spread), "kcal/mol")}
+        </>
+      ) : null}
+    </span>
   );
 }
 

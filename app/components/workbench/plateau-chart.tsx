@@ -1,13 +1,14 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, Plot, usePlot } from "~/components/charts/plot";
 import { Skeleton } from "~/components/ui/skeleton";
-import { fixed, formatCount, formatEnergy, formatRmsd, plural, trimmed, withUnit } from "~/lib/format";
+import { fixed, formatCount, formatEnergy, plural, withUnit } from "~/lib/format";
 import type { ToleranceCounts } from "~/lib/sift/count-against-tolerance";
 import {
   type CountedTolerance,
   countedTolerances,
   type Plateau,
   plateauAround,
+  toleranceText,
 } from "~/lib/workbench/plateau";
 import { roundTicks } from "~/lib/workbench/ticks";
 
@@ -64,14 +65,14 @@ export function PlateauChart({
         }}
       >
         <Plot
-          label={`Distinct conformers against the RMSD tolerance${here ? `: ${formatCount(here.count)} at ${withUnit(formatRmsd(here.tolerance), "Å")}` : ""}`}
+          label={`Distinct conformers against the RMSD tolerance${here ? `: ${formatCount(here.count)} at ${withUnit(toleranceText(here.tolerance), "Å")}` : ""}`}
           height={260}
           axisWidth={most >= 1000 ? 44 : 36}
           x={{
             title: "RMSD tolerance, Å",
             low: -0.02 * widest,
             // Room at the right for the ends of the lines.
-            high: counts.energyFactors.length > 1 ? 1.26 * widest : widest,
+            high: counts.energyFactors.length > 1 ? 1.38 * widest : widest,
             ticks: roundTicks(0, widest, 5),
           }}
           y={{ title: "distinct conformers", low: 0, high: top }}
@@ -80,7 +81,7 @@ export function PlateauChart({
             .map(({ tolerance, count }) => ({
               x: tolerance,
               y: count,
-              label: `${withUnit(formatRmsd(tolerance), "Å")}: ${plural(count, "conformer")}`,
+              label: `${withUnit(toleranceText(tolerance), "Å")}: ${plural(count, "conformer")}`,
               // A point is chosen by its tolerance in thousandths of an Å, the whole number that a point may carry.
               ...(onTake ? { frame: Math.round(1000 * tolerance) } : {}),
             }))}
@@ -199,7 +200,7 @@ function Lines({
       </g>
       {off ? (
         <ChartText x={plot.x(off.tolerance) + 6} y={plot.top + 10} halo>
-          {`${formatCount(off.count)} at ${withUnit(formatRmsd(off.tolerance), "Å")}`}
+          {`${formatCount(off.count)} at ${withUnit(toleranceText(off.tolerance), "Å")}`}
         </ChartText>
       ) : null}
       {energyTolerance !== null && lines.length > 1 ? (
@@ -207,7 +208,8 @@ function Lines({
           widest={widest}
           ends={lines.map(({ factor, line }) => ({
             chosen: factor === 1,
-            text: `${fine(factor * energyTolerance)}: ${formatCount(line.at(-1)?.count)}`,
+            tolerance: fine(factor * energyTolerance),
+            count: formatCount(line.at(-1)?.count),
             y: y(line.at(-1)?.count ?? 0),
           }))}
         />
@@ -219,7 +221,7 @@ function Lines({
           end={plateau.to > 0.6 * widest}
           halo
         >
-          {`plateau, ${trimmed(plateau.from, 3)} to ${withUnit(trimmed(plateau.to, 3), "Å")}`}
+          {`plateau, ${toleranceText(plateau.from)} to ${withUnit(toleranceText(plateau.to), "Å")}`}
         </ChartText>
       ) : null}
       {here ? (
@@ -238,7 +240,7 @@ function Lines({
             tone="mark"
             halo
           >
-            {`${withUnit(formatRmsd(here.tolerance), "Å")}: ${formatCount(here.count)}`}
+            {`${withUnit(toleranceText(here.tolerance), "Å")}: ${formatCount(here.count)}`}
           </ChartText>
         </>
       ) : null}
@@ -246,31 +248,44 @@ function Lines({
   );
 }
 
-/** "0.30 kcal/mol: 19" at the right end of each line, moved apart where they would lie on one another. */
+/** Pixels that "0.075 kcal/mol: 25" takes. */
+const END_LABEL_PX = 118;
+
+/**
+ * "0.30 kcal/mol: 19" at the right end of each line, moved apart where they would lie on one another. Where there is
+ * no room for it the unit stands once, above them.
+ */
 function EndLabels({
   ends,
   widest,
 }: {
-  ends: { chosen: boolean; text: string; y: number }[];
+  ends: { chosen: boolean; tolerance: string; count: string; y: number }[];
   widest: number;
 }) {
   const plot = usePlot();
   if (!plot) return null;
   const sorted = [...ends].sort((a, b) => a.y - b.y);
+  const wide = plot.right - plot.x(widest) >= END_LABEL_PX;
+  const first = sorted[0];
   let last = Number.NEGATIVE_INFINITY;
   return (
     <g>
+      {wide || first === undefined ? null : (
+        <ChartText x={plot.x(widest) + 6} y={first.y - 10} halo>
+          kcal/mol
+        </ChartText>
+      )}
       {sorted.map((end) => {
         last = Math.max(end.y - 6, last + 14);
         return (
           <ChartText
-            key={end.text}
+            key={end.tolerance}
             x={plot.x(widest) + 6}
             y={last + 10}
             tone={end.chosen ? "ink" : "plain"}
             halo
           >
-            {end.text}
+            {`${wide ? withUnit(end.tolerance, "kcal/mol") : end.tolerance}: ${end.count}`}
           </ChartText>
         );
       })}

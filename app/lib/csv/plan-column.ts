@@ -3,7 +3,7 @@ import type { ColumnData } from "../column-data.ts";
 import { IntakeRejection } from "../intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
 import { quoteFound } from "../text/escape.ts";
-import type { EnergyUnit } from "../units.ts";
+import { type EnergyUnit, kcalPer } from "../units.ts";
 import type { EnergyKind } from "../views.ts";
 import { columnUnit, type KnownUnit, saysEnergy } from "./column-unit.ts";
 import { type ColumnHeader, readAtom, readHeader } from "./header.ts";
@@ -228,13 +228,33 @@ function settleEnergy(draft: DraftColumn, unit: ReturnType<typeof unitOf>, answe
     unit.text === null
       ? `The header "${quoteFound(draft.header)}" names no unit.`
       : `"${quoteFound(unit.text)}" is no unit of energy.`;
+  const spread = spreadOf(draft.raw);
   draft.questions.push({
     id: "energyUnit",
     code: "energy-unit",
     text: `In which unit is "${quoteFound(draft.name)}"?`,
     reason: `${reason} Write it as name [unit], or state energyUnit.`,
-    options: ["kcal/mol", "kJ/mol", "eV", "hartree"].map((id) => ({ id, text: id })),
+    options: UNITS_ASKED.map((id) => ({
+      id,
+      text: id,
+      spreadKcal: spread === null ? null : spread * kcalPer(id),
+    })),
   });
+}
+
+const UNITS_ASKED = ["kcal/mol", "kJ/mol", "eV", "hartree"] as const;
+
+/** From the lowest to the highest number of a column, as written; null with fewer than two. */
+function spreadOf(raw: RawColumn): number | null {
+  if (raw.count < 2) return null;
+  const { values, present } = raw;
+  let [low, high] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY];
+  for (let k = 0; k < values.length; k++) {
+    if (present[k] !== 1) continue;
+    low = Math.min(low, values[k]!);
+    high = Math.max(high, values[k]!);
+  }
+  return high - low;
 }
 
 function settleProperty(

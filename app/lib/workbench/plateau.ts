@@ -56,16 +56,20 @@ export function plateauSentence(points: readonly CountedTolerance[], tolerance: 
   if (!here || points.length < 2) return null;
   const plateau = plateauAround(points, tolerance);
   if (plateau !== null) {
-    return `The count stays at ${formatCount(here.count)} at every tolerance counted from ${fine(plateau.from)} to ${withUnit(fine(plateau.to), "Å")}, so it does not hang on the choice there.`;
+    return `The count stays at ${formatCount(here.count)} at every tolerance counted from ${toleranceText(plateau.from)} to ${withUnit(toleranceText(plateau.to), "Å")}, so it does not hang on the choice there.`;
   }
   const [before, after] = [points[at - 1], points[at + 1]];
   const words = [before, after].flatMap((point) =>
-    point ? [`${formatCount(point.count)} at ${withUnit(fine(point.tolerance), "Å")}`] : [],
+    point ? [`${formatCount(point.count)} at ${withUnit(toleranceText(point.tolerance), "Å")}`] : [],
   );
   return `The count hangs on the tolerance here: ${words.join(" and ")}. Look at the pairs nearest to the cut before you rely on it.`;
 }
 
-/** "0.02", "0.4" and "0.125" as they are. */
-function fine(tolerance: number): string {
+/**
+ * An RMSD tolerance in Å with two decimals, three where it has them.
+ *
+ * @example toleranceText(0.4) // "0.40"; toleranceText(0.125) // "0.125"
+ */
+export function toleranceText(tolerance: number): string {
   return formatRmsd(tolerance).replace(/0$/, "");
 }
