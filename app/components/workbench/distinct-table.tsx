@@ -111,7 +111,7 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
               <Th align="right" className={MID}>
                 Frame
               </Th>
-              <Th align="right" unit="kcal/mol" sort="up">
+              <Th align="right" unit="kcal/mol" sort="up" className="max-[24rem]:whitespace-normal">
                 Relative energy
               </Th>
               <Th align="right">Degeneracy</Th>
@@ -244,7 +244,7 @@ function KeptRow({
         </Td>
         <Td>
           <span className="flex items-center gap-3">
-            <span className="w-18 shrink-0 text-right max-sm:w-9 max-[24rem]:w-auto">
+            <span className="w-18 shrink-0 text-right max-sm:w-9 max-[24rem]:w-auto max-[24rem]:shrink">
               <span className={MID}>found </span>
               {row.found}×
               {row.foundIn ? (
