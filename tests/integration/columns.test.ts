@@ -238,6 +238,20 @@ describe("a table", () => {
     expect(await storedRows()).toEqual(before);
   });
 
+  it("asks for a unit with the spread that each would mean", async () => {
+    const { id } = await ensemble(3);
+    const file = table("frame,E\n1,-1.5\n2,-1.6\n3,-1.75\n");
+    const { body } = await add(id, file, { preview: "true", kind: "energy" });
+    const question = body.questions.find((q: { id: string }) => q.id === "energyUnit");
+    const spread = (unit: string) =>
+      question.options.find((option: { id: string }) => option.id === unit).spreadKcal;
+    // 1 kcal is 4.184 kJ by definition.
+    expect(spread("kcal/mol")).toBeCloseTo(0.25, 12);
+    expect(spread("kJ/mol")).toBeCloseTo(0.25 / 4.184, 12);
+    expect(spread("eV")).toBeGreaterThan(5);
+    expect(spread("hartree")).toBeGreaterThan(100);
+  });
+
   it("is refused from readers, foreign tokens and for foreign ensembles", async () => {
     const { id } = await ensemble(3);
     const reader = await makeMember(team.id, "reader");
