@@ -75,7 +75,8 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
         </p>
       </section>
       <Answered intake={intake} />
-      {ensemble.mayCompute ? <ReadAgain intake={intake} /> : null}
+      {/* While something is asked, the cards above are the way to answer. */}
+      {ensemble.mayCompute && ensemble.openQuestions === 0 ? <ReadAgain intake={intake} /> : null}
       {ensemble.chiralityNote ? (
         <Note className="mt-9">
           The molecule counts as{" "}
