@@ -86,6 +86,14 @@ export const users = mysqlTable(
     disabledAt: timeColumn(),
     /** Asked to be deleted: no sign-in from then on, undone within 30 days, then purged. */
     deletedAt: timeColumn(),
+    /** When a letter to the address was answered; null until then. The account works without. */
+    confirmedAt: timeColumn(),
+    /** Which letters beside those of safety the person wants. */
+    jobLetters: boolean().notNull().default(true),
+    linkLetters: boolean().notNull().default(true),
+    digest: boolean().notNull().default(false),
+    /** When the last week was told of, or the digest was asked for. */
+    digestAt: timeColumn(),
   },
   (t) => [uniqueIndex("users_email").on(t.email)],
 );
