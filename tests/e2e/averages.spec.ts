@@ -99,11 +99,28 @@ test("a contact and a torsion picked on the structure are averaged by their rule
 });
 
 test("without a property the section says what it needs", async ({ page }) => {
-  await takeIn(page, "averages");
+  const id = await takeIn(page, "averages");
   await expect(page.getByRole("heading", { name: "Averages", exact: true })).toBeVisible();
   // The file's own fields are properties already; each is averaged.
   await expect(row(page, /UFF_ENERGY_KCAL_MOL/)).toBeVisible();
   await expect(page.getByText("Pick two atoms in the view for a distance", { exact: false })).toBeVisible();
+
+  await test.step("page and section come to be of one sift when another one ended between their reads", async () => {
+    const rail = page.getByRole("navigation", { name: "Sections" });
+    await rail.getByRole("link", { name: "Populations" }).click();
+    await page.waitForURL(/\/populations/);
+    const asked = await page.request.post(`/files/ensembles/${id}/sifts`, {
+      headers: { origin: new URL(page.url()).origin },
+      data: { level: "MMFF94", rmsdTolerance: 0.25 },
+    });
+    const sift = (await asked.json()) as { id: string };
+    await expect
+      .poll(async () => (await (await page.request.get(`/files/sifts/${sift.id}?wait=10`)).json()).status)
+      .toBe("done");
+    await rail.getByRole("link", { name: "Averages" }).click();
+    await expect(page.getByText(/RMSD tolerance 0.250?\sÅ/)).toBeVisible();
+    await expect(row(page, /UFF_ENERGY_KCAL_MOL/)).toBeVisible();
+  });
 });
 
 test("trust names what is yours to settle, and follows the error", async ({ page }) => {

@@ -4,8 +4,9 @@ import { ButtonLink } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
 import { TextLink } from "~/components/ui/text-link";
-import { OutdatedNote, SectionState } from "~/components/workbench/section-state";
+import { CatchingUp, OutdatedNote, SectionState } from "~/components/workbench/section-state";
 import { useWorkbench } from "~/components/workbench/workbench-context";
+import { useSameSift } from "~/hooks/use-same-sift";
 import type { AveragesView } from "~/lib/averages/averages-view";
 import { averagesFinding } from "~/lib/averages/words";
 import { plural } from "~/lib/format";
@@ -23,6 +24,7 @@ import { ValueDistribution } from "./value-distribution";
 /** What the flask sees: every property averaged by its own rule, with what makes and what moves it. */
 export function AveragesSection({ view }: { view: AveragesView }) {
   const { result, sift } = useWorkbench();
+  const same = useSameSift(sift, view.siftId);
   const weighed = useWeighed(view);
   const error = useLevelError(view, weighed);
   const averaged = useAverages(view, weighed, error.sigma);
@@ -35,6 +37,8 @@ export function AveragesSection({ view }: { view: AveragesView }) {
       />
       {result === null ? (
         <SectionState />
+      ) : !same ? (
+        <CatchingUp />
       ) : weighed === null || averaged === null ? (
         <StatePanel title="Nothing weighs these conformers" className="mt-6">
           <p>

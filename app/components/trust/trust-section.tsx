@@ -5,9 +5,10 @@ import { labelClass } from "~/components/ui/field";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
 import { TextLink } from "~/components/ui/text-link";
-import { OutdatedNote, SectionState } from "~/components/workbench/section-state";
+import { CatchingUp, OutdatedNote, SectionState } from "~/components/workbench/section-state";
 import { SettingsStrip } from "~/components/workbench/settings-strip";
 import { useWorkbench } from "~/components/workbench/workbench-context";
+import { useSameSift } from "~/hooks/use-same-sift";
 import type { AveragesView } from "~/lib/averages/averages-view";
 import { formatCount, formatEnergy, formatTemperature } from "~/lib/format";
 import type { TrustView } from "~/lib/trust/trust-view";
@@ -20,7 +21,8 @@ import { type Trust, useTrust } from "./use-trust";
 
 /** How far to trust the result: what the level's error moves, what the search may have missed, what hangs on a choice. */
 export function TrustSection({ averages, trust }: { averages: AveragesView; trust: TrustView }) {
-  const { result } = useWorkbench();
+  const { sift, result } = useWorkbench();
+  const same = useSameSift(sift, averages.siftId);
   const found = useTrust(averages, trust);
   return (
     <section aria-labelledby="section-title">
@@ -31,6 +33,8 @@ export function TrustSection({ averages, trust }: { averages: AveragesView; trus
       />
       {result === null ? (
         <SectionState />
+      ) : !same ? (
+        <CatchingUp />
       ) : found === null ? (
         <StatePanel title="Nothing weighs these conformers" className="mt-6">
           <p>

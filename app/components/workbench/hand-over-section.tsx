@@ -1,5 +1,4 @@
-import { useEffect } from "react";
-import { Link, useLocation, useRevalidator } from "react-router";
+import { Link, useLocation } from "react-router";
 import type { HandOverAnswer } from "~/components/hand-over/answer";
 import { CitationBlock } from "~/components/hand-over/citation-block";
 import { CompareBlock } from "~/components/hand-over/compare-block";
@@ -13,25 +12,29 @@ import { VerifyStrip } from "~/components/hand-over/verify-strip";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
 import { linkClass } from "~/components/ui/text-link";
+import { useSameSift } from "~/hooks/use-same-sift";
 import { handOverFinding } from "~/lib/edition/hand-over-finding";
 import type { HandOverView } from "~/lib/edition/views";
 import type { ExportFacts } from "~/services/sifts/describe-exports.server";
-import { OutdatedNote, SectionState } from "./section-state";
+import { CatchingUp, OutdatedNote, SectionState } from "./section-state";
 import { useWorkbench } from "./workbench-context";
 
 /** Editions and links, then the distinct set as it is now: files, methods text, recipe, sources. */
 export function HandOverSection({
+  siftId,
   files,
   view,
   answer,
 }: {
+  /** The finished sift that files and methods are of. */
+  siftId: string | null;
   files: readonly ExportFacts[] | null;
   view: HandOverView;
   answer?: HandOverAnswer;
 }) {
   const { ensemble, sift, result } = useWorkbench();
   const { search } = useLocation();
-  useCatchUp(result !== null && view.methods === null);
+  const same = useSameSift(sift, siftId);
   const last = view.editions[0];
   if ((sift === null || result === null) && last === undefined) {
     return (
@@ -85,7 +88,8 @@ export function HandOverSection({
           />
         </div>
       ) : null}
-      {sift !== null && result !== null ? (
+      {same ? null : <CatchingUp />}
+      {same && sift !== null && result !== null ? (
         <>
           <DistinctFiles files={files} />
           {view.methods ? <MethodsBlock lines={view.methods} /> : null}
@@ -95,12 +99,4 @@ export function HandOverSection({
       <SourcesBlock />
     </section>
   );
-}
-
-/** Where the sift ended between two reads of one page, the part that came too early is fetched again, once. */
-function useCatchUp(early: boolean) {
-  const { revalidate } = useRevalidator();
-  useEffect(() => {
-    if (early) void revalidate();
-  }, [early, revalidate]);
 }

@@ -93,6 +93,20 @@ function Running({ sift }: { sift: SiftView }) {
   );
 }
 
+/** What a section shows while its figures are of another moment than the sift: they are on their way. */
+export function CatchingUp() {
+  return (
+    <div className="mt-6 grid gap-6" aria-busy="true">
+      <p role="status" className="text-ink-2">
+        The sift has just ended; its figures are being fetched.
+        <span className="hidden noscript:inline"> Load the page again to see them.</span>
+      </p>
+      <Skeleton className="h-16 w-full" />
+      <Skeleton className="h-72 w-full" />
+    </div>
+  );
+}
+
 /** Frames were held, released or read again since: the result shown is of the frames as they were. */
 export function OutdatedNote({ onAgain, busy }: { onAgain?: () => void; busy?: boolean }) {
   const { sift, result, ensemble } = useWorkbench();

@@ -39,7 +39,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
       sift === null ? null : describeExports({ actor, siftId: sift.id, temperature }),
       loadHandOver({ actor, ensembleId, ...shown, compare: comparedIn(url.searchParams) }),
     ]);
-    return { files, view };
+    return { siftId: sift?.result ? sift.id : null, files, view };
   });
 }
 
@@ -107,6 +107,7 @@ async function makeOne(actor: Actor, ensembleId: string, number: number, form: F
     days: text(form, "days") === "" ? Number.NaN : Number(text(form, "days")),
     sources: form.get("sources") === "1",
     logbook: form.get("logbook") === "1",
+    email: text(form, "email").trim() || null,
   });
   if (!asked.success) return refused(asked.error);
   const made = await makeLink({ actor, ensembleId, number, link: asked.data });
@@ -117,6 +118,7 @@ async function makeOne(actor: Actor, ensembleId: string, number: number, form: F
       label: asked.data.label,
       endsAt: made.endsAt.toISOString(),
       edition: number,
+      mailedTo: asked.data.email ?? null,
     },
   } satisfies HandOverAnswer;
 }
@@ -139,6 +141,7 @@ export function shouldRevalidate({
 export default function HandOver({ loaderData, actionData }: Route.ComponentProps) {
   return (
     <HandOverSection
+      siftId={loaderData.siftId}
       files={loaderData.files}
       view={loaderData.view}
       answer={actionData as HandOverAnswer | undefined}
