@@ -1,3 +1,6 @@
+import { columnUnit } from "./csv/column-unit.ts";
+import { readHeader } from "./csv/header.ts";
+import { ENERGY_UNITS, type EnergyUnit } from "./units.ts";
 import type { EnergyKind } from "./views.ts";
 
 /** A column as the page of columns lists it. */
@@ -24,6 +27,10 @@ export interface ColumnView {
   origin: string;
   /** The formula, of a computed one. */
   formula: string | null;
+  /** By a formula, or measured on the structures. */
+  computed: boolean;
+  /** A property that only counts frames up. */
+  counter: boolean;
   /** Formulas that need it. */
   usedBy: string[];
 }
@@ -70,3 +77,48 @@ export const ENERGY_KIND_WORDS: Record<EnergyKind, string> = {
   enthalpy: "enthalpy",
   free: "free energy",
 };
+
+/** A column as far as it says whether its numbers can be energies. */
+interface MaybeLevel {
+  name: string;
+  kind: "energy" | "property";
+  unit: string | null;
+  atom: number | null;
+  /** A formula, or measured on the structures. */
+  computed: boolean;
+}
+
+/**
+ * Why the numbers of a column cannot be used as a level, as the rest of a sentence; null where they can.
+ *
+ * @example whyNoLevel({ name: "dipole", kind: "property", unit: "debye", atom: null, computed: false })
+ * // "is in debye, which is no unit of energy."
+ */
+export function whyNoLevel({ kind, unit, atom, computed }: MaybeLevel): string | null {
+  if (kind === "energy") return "is a level already.";
+  if (computed) return "is computed; what it is follows from how it is computed.";
+  if (atom !== null) return `belongs to atom ${atom}; a level has one energy a frame.`;
+  const known = unit === null ? null : columnUnit(unit);
+  // The unit of a key may be a letter that is one of energy too: "K".
+  if (known !== null && known.energy === null && known.family !== "number") {
+    return `is in ${unit}, which is no unit of energy.`;
+  }
+  return null;
+}
+
+/** The unit of energy that a column carries or its name spells; null where neither says one. */
+export function proposedEnergyUnit({ name, unit }: Pick<MaybeLevel, "name" | "unit">): EnergyUnit | null {
+  const own = unit === null ? null : (columnUnit(unit)?.energy ?? null);
+  return own ?? readHeader(name).unit?.energy ?? null;
+}
+
+const ENERGY_WORDS = /(^|[^a-z])(energy|energies|enthalpy|e_?tot|escf|[eghu]_[a-z0-9]+)([^a-z]|$)/i;
+
+/** Whether a property is probably a level that nobody has called so: its unit or its name speaks of energies. */
+export function looksLikeLevel(column: MaybeLevel): boolean {
+  if (whyNoLevel(column) !== null) return false;
+  const unit = proposedEnergyUnit(column);
+  // A temperature and a wavenumber have the same units as some energies.
+  if (unit !== null && ENERGY_UNITS.indexOf(unit) < 5) return true;
+  return ENERGY_WORDS.test(column.name);
+}

@@ -1,4 +1,4 @@
-import { useEffect, useState } from "react";
+import { useCallback, useEffect, useState } from "react";
 import { href, useFetcher } from "react-router";
 import { Button, SubmitButton } from "~/components/ui/button";
 import { Dialog, DialogFoot } from "~/components/ui/dialog";
@@ -9,9 +9,10 @@ import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { showToast } from "~/components/ui/toast";
 import type { ActAnswer } from "~/components/workbench/act-answer";
-import { type ColumnView, ENERGY_KIND_WORDS } from "~/lib/columns-view";
+import { type ColumnView, ENERGY_KIND_WORDS, whyNoLevel } from "~/lib/columns-view";
 import { formatCount, formatTemperature } from "~/lib/format";
 import { ScrollBox } from "./scroll-box";
+import { UseAsLevel, UseAsProperty } from "./use-as-level";
 
 interface Props {
   ensembleId: string;
@@ -71,8 +72,13 @@ export function ColumnTable({ columns, ensembleId, mayChange }: Props & { column
                 {column.solvent ? <span className="block">in {column.solvent}</span> : null}
               </Td>
               {mayChange ? (
-                <Td className="print:hidden">
-                  <ChangeColumn column={column} ensembleId={ensembleId} />
+                <Td wrap className="print:hidden">
+                  <span className="flex flex-wrap gap-x-4 gap-y-1">
+                    <ChangeColumn column={column} ensembleId={ensembleId} />
+                    {whyNoLevel(column) === null && !column.counter ? (
+                      <UseAsLevel column={column} ensembleId={ensembleId} />
+                    ) : null}
+                  </span>
                 </Td>
               ) : null}
             </Tr>
@@ -86,6 +92,7 @@ export function ColumnTable({ columns, ensembleId, mayChange }: Props & { column
 /** Name, kind, what the numbers cannot say of themselves; and removal, which can be undone. */
 function ChangeColumn({ column, ensembleId }: { column: ColumnView; ensembleId: string }) {
   const [open, setOpen] = useState(false);
+  const close = useCallback(() => setOpen(false), []);
   const change = useFetcher<ActAnswer>();
   const remove = useFetcher<ActAnswer>();
   const undo = useFetcher<ActAnswer>();
@@ -164,6 +171,9 @@ function ChangeColumn({ column, ensembleId }: { column: ColumnView; ensembleId: 
           </Button>
         </DialogFoot>
       </change.Form>
+      {energy && !column.computed ? (
+        <UseAsProperty column={column} ensembleId={ensembleId} onDone={close} />
+      ) : null}
     </Dialog>
   );
 }

@@ -2,7 +2,7 @@ import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
 import { TextLink } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
-import type { ColumnsView } from "~/lib/columns-view";
+import { type ColumnsView, looksLikeLevel } from "~/lib/columns-view";
 import { plural } from "~/lib/format";
 import { AddColumns } from "./add-columns";
 import { ColumnTable } from "./column-table";
@@ -15,6 +15,7 @@ export function ColumnsSection({ view }: { view: ColumnsView }) {
   const { columns, removed } = view;
   const levels = columns.filter(({ kind }) => kind === "energy").length;
   const properties = columns.length - levels;
+  const maybe = columns.filter((column) => looksLikeLevel(column) && !column.counter);
   const unstated = columns.filter(({ kind, kindStated }) => kind === "energy" && !kindStated);
   return (
     <section aria-labelledby="section-title">
@@ -36,6 +37,11 @@ export function ColumnsSection({ view }: { view: ColumnsView }) {
       </Finding>
       {columns.length > 0 ? (
         <ColumnTable columns={columns} ensembleId={ensemble.id} mayChange={ensemble.mayCompute} />
+      ) : null}
+      {ensemble.mayCompute && maybe.length > 0 ? (
+        <Note className="mt-4">
+          {`${maybe.map(({ name }) => name).join(", ")}: ${maybe.length === 1 ? "a property that looks like energies" : "properties that look like energies"}. “Use as a level” makes ${maybe.length === 1 ? "it a level" : "them levels"} to compare and weigh with, once you say the unit.`}
+        </Note>
       ) : null}
       {ensemble.mayCompute ? (
         <>

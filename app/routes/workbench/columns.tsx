@@ -9,6 +9,7 @@ import type { Actor } from "~/services/auth/access.server";
 import { changeColumn, columnChangeSchema } from "~/services/columns/change-column.server";
 import { checkFormula, deriveColumn, deriveSchema } from "~/services/columns/derive-column.server";
 import { loadColumns } from "~/services/columns/load-columns.server";
+import { columnSpan, levelStatedSchema, makeLevel, makeProperty } from "~/services/columns/make-level.server";
 import { removeColumn, restoreColumn } from "~/services/columns/remove-column.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import type { Route } from "./+types/columns";
@@ -64,6 +65,25 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
       await changeColumn({ ...at, change: change.data });
       return { ok: true, done: { intent } } satisfies ActAnswer;
     }
+    case "span":
+      return { ok: true, span: await columnSpan(at) };
+    case "use-as-level": {
+      const kelvin = text("temperature");
+      const stated = levelStatedSchema.safeParse({
+        name: text("name"),
+        unit: text("unit"),
+        energyKind: text("energyKind"),
+        temperature: kelvin === "" ? null : Number(kelvin),
+        geometryLevel: text("geometryLevel"),
+        solvent: text("solvent"),
+      });
+      if (!stated.success) return refused(stated.error.issues[0]?.message ?? "Look at the fields again.");
+      await makeLevel({ ...at, stated: stated.data });
+      return { ok: true, done: { intent } } satisfies ActAnswer;
+    }
+    case "use-as-property":
+      await makeProperty(at);
+      return { ok: true, done: { intent } } satisfies ActAnswer;
     case "check": {
       const expression = text("expression");
       try {

@@ -24,6 +24,7 @@ export async function loadColumns(options: { actor: Actor; ensembleId: string })
     columns: found.map(({ dataSha: _, origin, definition, ...column }) => ({
       ...column,
       origin: originWords(origin, definition),
+      computed: definition !== null,
       formula: definition?.type === "expression" ? definition.text : null,
       usedBy: derived.filter(({ inputs }) => inputs.includes(column.id)).map(({ name }) => name),
     })),

@@ -28,9 +28,30 @@ function factorTo(unit: string | null, from: string | null): number | null {
   return to === null || own === null ? null : kcalPer(own) / kcalPer(to);
 }
 
+/** A further number of the files that a person made a level: its values join, in the unit that was stated for them. */
+function isUsedAsLevel(row: ColumnRow, made: NewColumn): boolean {
+  return row.kind === "energy" && made.kind === "property" && row.origin === made.origin;
+}
+
+/** The column that the values of the batch's belong to: that of its name, or of its key or field under another name. */
+function ownOf(
+  row: ColumnRow,
+  made: ReadonlyMap<string, NewColumn>,
+  names: ReadonlySet<string>,
+): NewColumn | undefined {
+  const named = made.get(row.name.toLowerCase());
+  if (named !== undefined || row.origin === null) return named;
+  return [...made.values()].find(
+    ({ kind, origin, name }) =>
+      kind === "property" && origin === row.origin && !names.has(name.toLowerCase()),
+  );
+}
+
 /** What a column of the batch becomes: part of one that is there, or one of its own. */
 function join(row: ColumnRow, made: NewColumn, data: ColumnData): string | null {
-  const factor = row.kind === made.kind ? factorTo(row.unit, made.unit) : null;
+  const used = isUsedAsLevel(row, made);
+  const unit = used && made.unit === null ? row.unit : made.unit;
+  const factor = row.kind === made.kind || used ? factorTo(row.unit, unit) : null;
   if (factor === null) return null;
   made.data.present.forEach((flag, k) => {
     if (flag !== 1) return;
@@ -87,14 +108,18 @@ export async function extendColumns(
   const messages: IntakeMessage[] = [];
   const remark = (message: string) => messages.push({ code: "E06", severity: "remark", file, message });
   const byName = new Map(made.map((column) => [column.name.toLowerCase(), column]));
-  const rows = await tx.select({ id: columns.id }).from(columns).where(eq(columns.ensembleId, ensembleId));
+  const rows = await tx
+    .select({ id: columns.id, name: columns.name })
+    .from(columns)
+    .where(eq(columns.ensembleId, ensembleId));
+  const names = new Set(rows.map(({ name }) => name.toLowerCase()));
   for (const { id } of rows) {
     const [row] = await tx.select().from(columns).where(eq(columns.id, id));
     if (row === undefined) continue;
     const data = longer(unpackColumn(row.data, frames.before), frames.now);
-    const own = byName.get(row.name.toLowerCase());
-    byName.delete(row.name.toLowerCase());
+    const own = ownOf(row, byName, names);
     if (own) {
+      byName.delete(own.name.toLowerCase());
       checkJoins(row, own);
       const said = join(row, own, data);
       if (said === null) {

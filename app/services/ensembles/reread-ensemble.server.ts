@@ -21,6 +21,7 @@ import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
 import { completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
 import { type Counts, countFrames, levelsInUse } from "./intake-rows.server.ts";
+import { keepStated } from "./keep-stated.ts";
 import { findQuestions } from "./load-intake.server.ts";
 import { findStored, readStored, sourcesOf, takeBack } from "./read-stored.server.ts";
 import { refreshChirality } from "./refresh-chirality.server.ts";
@@ -71,24 +72,33 @@ function nameTaken(name: string): DomainError {
 
 /** A level that keeps its name keeps its id and its place among the levels: recipes and hues go on meaning it. */
 async function replaceColumns(tx: Transaction, from: string, to: string): Promise<void> {
+  const facts = {
+    ...{ id: columns.id, name: columns.name, kind: columns.kind, unit: columns.unit, origin: columns.origin },
+    ...{
+      rule: columns.rule,
+      ordinal: columns.ordinal,
+      solvent: columns.solvent,
+      createdBy: columns.createdBy,
+    },
+    ...{ energyKind: columns.energyKind, temperature: columns.temperature, kindStated: columns.kindStated },
+    geometryLevel: columns.geometryLevel,
+  };
   const old = await tx
-    .select({ id: columns.id, name: columns.name, ordinal: columns.ordinal })
+    .select(facts)
     .from(columns)
     .where(and(eq(columns.ensembleId, to), fromFiles));
   await tx.delete(columns).where(and(eq(columns.ensembleId, to), fromFiles));
-  const made = await tx
-    .select({ id: columns.id, name: columns.name, ordinal: columns.ordinal })
-    .from(columns)
-    .where(eq(columns.ensembleId, from));
+  const read = await tx.select(facts).from(columns).where(eq(columns.ensembleId, from));
+  const made = read.map((column) => ({ column, kept: keepStated(old, column) }));
   const others = await tx.select({ name: columns.name }).from(columns).where(eq(columns.ensembleId, to));
-  const taken = others.find((other) => made.some(({ name }) => name === other.name));
-  if (taken) throw nameTaken(taken.name);
-  for (const { id, name, ordinal } of made) {
-    const same = old.find((column) => column.name === name);
+  const names = made.map(({ column, kept }) => kept.name ?? column.name);
+  const taken = names.find((name, k) => names.indexOf(name) !== k || others.some((o) => o.name === name));
+  if (taken !== undefined) throw nameTaken(taken);
+  for (const { column, kept } of made) {
     await tx
       .update(columns)
-      .set({ ensembleId: to, id: same?.id ?? id, ordinal: same?.ordinal ?? ordinal })
-      .where(eq(columns.id, id));
+      .set({ ...kept, ensembleId: to })
+      .where(eq(columns.id, column.id));
   }
 }
 

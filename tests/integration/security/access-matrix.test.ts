@@ -281,16 +281,18 @@ const FORM_ACTS: Act[] = [
   ].map(([intent, fields, reached]) =>
     act("/ensembles/:id/intake", intent, fields, ANALYSTS(Number(reached))),
   ),
-  ...["remove", "restore", "change", "derive"].map((intent) =>
+  ...["remove", "restore", "change", "derive", "use-as-level", "use-as-property"].map((intent) =>
     act(
       "/ensembles/:id/columns",
       intent,
-      { column: "none", name: "N", expression: "nothing here" },
+      { column: "none", name: "N", expression: "nothing here", unit: "kcal/mol", energyKind: "electronic" },
       ANALYSTS(intent === "derive" ? 422 : 404),
     ),
   ),
   // Checking a formula stores nothing.
   act("/ensembles/:id/columns", "check", { expression: "1" }, "200 200 200"),
+  // So does looking at the lowest and highest number of a column.
+  act("/ensembles/:id/columns", "span", { column: "none" }, "404 404 404"),
   act("/ensembles/:id/averages", "rule", { column: "none", rule: "linear" }, ANALYSTS(404)),
   act("/ensembles/:id/averages", "observe", { observable: "distance", atoms: "1,999" }, ANALYSTS(422)),
   act("/ensembles/:id/compare", "remove", { outside: "none" }, ANALYSTS(404)),
