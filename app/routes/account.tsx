@@ -11,10 +11,10 @@ import { capital, pluralWord } from "~/lib/format";
 import { callerOf } from "~/middleware/caller.server";
 import { requireUserMiddleware } from "~/middleware/require-user.server";
 import { readForm } from "~/routes/read-form.server";
-import { askNewAddress } from "~/services/account/change-address.server";
+import { askNewAddress, confirmAgain } from "~/services/account/change-address.server";
 import { changePassword } from "~/services/account/change-password.server";
 import { deleteAccount } from "~/services/account/delete-account.server";
-import { loadAccount, renameSelf } from "~/services/account/load-account.server";
+import { chooseLetters, loadAccount, renameSelf } from "~/services/account/load-account.server";
 import { endOwnSessions } from "~/services/account/sessions.server";
 import { forPage, refuseForm } from "~/services/http.server";
 import { restoreTeam } from "~/services/teams/delete-team.server";
@@ -64,6 +64,15 @@ export async function action({ request, context }: Route.ActionArgs) {
         case "address":
           await askNewAddress({ actor, email: text("email"), password: text("current"), caller });
           return done("A letter goes to the new address. The old one stays until the link in it is used.");
+        case "confirm":
+          await confirmAgain({ actor });
+          return done("A letter goes to your address. The link in it confirms the address.");
+        case "letters": {
+          const wants = (name: string) => form.get(name) === "1";
+          const letters = { jobs: wants("jobs"), links: wants("links"), digest: wants("digest") };
+          await chooseLetters({ actor, letters });
+          return done("Saved.");
+        }
         case "session":
           await endOwnSessions({ actor, sessionId: text("session") });
           return done("That session is ended.");
@@ -100,7 +109,7 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
         </Finding>
         {confirmed ? (
           <div role="status" className="mt-6">
-            <Note tone="good">The address is changed to {account.email}.</Note>
+            <Note tone="good">The address {account.email} is confirmed.</Note>
           </div>
         ) : null}
         <div className="mt-9 grid items-start gap-x-12 gap-y-9 lg:grid-cols-[minmax(0,1fr)_22.5rem]">

@@ -8,6 +8,7 @@ import { workerBundle, workerBundleExists } from "./jobs/pool.server.ts";
 import { startJobs } from "./jobs/run-jobs.server.ts";
 import { shutDownJobs } from "./jobs/shutdown.server.ts";
 import { log } from "./log.server.ts";
+import { sendDigests } from "./mail/digest.server.ts";
 import { remindOfLinks } from "./mail/remind-links.server.ts";
 import { startMail, stopMail } from "./mail/send-mail.server.ts";
 import { purgeDeleted } from "./purge.server.ts";
@@ -38,8 +39,8 @@ let sweeper: NodeJS.Timeout | undefined;
 
 function startSweeping(): void {
   const sweep = () =>
-    Promise.all([sweepEnded(), sweepUploads(), purgeDeleted(), remindOfLinks()]).catch((error) =>
-      log.warn({ err: error }, "not swept"),
+    Promise.all([sweepEnded(), sweepUploads(), purgeDeleted(), remindOfLinks(), sendDigests()]).catch(
+      (error) => log.warn({ err: error }, "not swept"),
     );
   sweeper = setInterval(sweep, SWEEP_EVERY_MS);
   sweeper.unref();

@@ -115,7 +115,7 @@ test("an account shows its sessions, changes its password and its address", asyn
   await expect(page.getByText("A letter goes to the new address.")).toBeVisible();
   await page.goto(await linkTo(page, next, "confirm-address"));
   await page.getByRole("button", { name: "Use this address" }).click();
-  await expect(page.getByText(`The address is changed to ${next}.`)).toBeVisible();
+  await expect(page.getByText(`The address ${next} is confirmed.`)).toBeVisible();
   await context.close();
 });
 

@@ -1,6 +1,7 @@
 import type { ReactNode } from "react";
 import { Form } from "react-router";
 import { SubmitButton } from "~/components/ui/button";
+import { Checkbox } from "~/components/ui/checkbox";
 import { TextField } from "~/components/ui/field";
 import { Note } from "~/components/ui/note";
 import type { AccountAnswer } from "~/routes/account";
@@ -51,6 +52,15 @@ export function AccountForms({
         />
         <SubmitButton kind="plain">Change the password</SubmitButton>
       </FormPanel>
+      {account.confirmed ? null : (
+        <FormPanel title="Confirm the address" intent="confirm" answer={of("confirm")}>
+          <p className="text-ink-2">
+            <span className="break-all">{account.email}</span> is not confirmed yet. All works without, but a
+            reset of the password goes there: use the link in the letter, or send another.
+          </p>
+          <SubmitButton kind="plain">Send the letter again</SubmitButton>
+        </FormPanel>
+      )}
       <FormPanel title="Address" intent="address" answer={of("address")}>
         <p className="text-ink-2">
           Letters go to <span className="break-all">{account.email}</span>.
@@ -72,6 +82,21 @@ export function AccountForms({
           error={fault("address", "current")}
         />
         <SubmitButton kind="plain">Change the address</SubmitButton>
+      </FormPanel>
+      <FormPanel title="Letters" intent="letters" answer={of("letters")}>
+        <p className="text-ink-2">
+          What concerns your account and its safety always comes. No letter names a compound or a file.
+        </p>
+        <Checkbox name="jobs" value="1" defaultChecked={account.letters.jobs}>
+          An intake or a sift of mine took over two minutes and has ended
+        </Checkbox>
+        <Checkbox name="links" value="1" defaultChecked={account.letters.links}>
+          A link that I made ends in three days
+        </Checkbox>
+        <Checkbox name="digest" value="1" defaultChecked={account.letters.digest}>
+          Once a week, what happened in my teams, in counts
+        </Checkbox>
+        <SubmitButton kind="plain">Save the choice</SubmitButton>
       </FormPanel>
       <FormPanel title="Close the account" intent="delete" answer={of("delete")}>
         <p className="text-ink-2">

@@ -8,5 +8,5 @@ export interface HandOverAnswer {
   /** Number of the edition that was frozen. */
   frozen?: number;
   /** The link that was made: its address is shown this once. */
-  made?: { address: string; label: string; endsAt: string; edition: number };
+  made?: { address: string; label: string; endsAt: string; edition: number; mailedTo: string | null };
 }

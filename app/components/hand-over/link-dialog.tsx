@@ -90,6 +90,15 @@ function LinkForm({ editions, linkDays }: { editions: readonly EditionRow[]; lin
         help="Whoever opens the ended link reads this line; nothing else of you is shown."
         error={fields.contact}
       />
+      <TextField
+        label="Send it by letter to"
+        name="email"
+        type="email"
+        autoComplete="off"
+        placeholder="name@laboratory.example"
+        help="May stay empty. The letter holds the address and its end date, no name of a compound."
+        error={fields.email}
+      />
       <div className="grid gap-2">
         <Checkbox name="sources" value="1">
           Let them download the source files
@@ -119,8 +128,9 @@ function MadeLink({ made }: { made: NonNullable<HandOverAnswer["made"]> }) {
   return (
     <div role="status" className="grid gap-4 border-t-3 border-good-edge pt-4">
       <p className="figures">
-        The link for {made.label} shows edition {made.edition} and ends {formatDateTime(made.endsAt)}. Copy it
-        now: it is shown this once, and kept nowhere.
+        The link for {made.label} shows edition {made.edition} and ends {formatDateTime(made.endsAt)}.
+        {made.mailedTo === null ? null : ` A letter with it goes to ${made.mailedTo}.`} Copy it now: it is
+        shown this once, and kept nowhere.
       </p>
       <div className="grid items-end gap-2 sm:grid-cols-[minmax(0,1fr)_auto]">
         <TextField

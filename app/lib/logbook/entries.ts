@@ -47,6 +47,7 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
   z.object({ type: z.literal("sessions-ended"), data: z.object({ count: z.number() }) }),
   z.object({ type: z.literal("address-change-asked"), data: z.object({}) }),
   z.object({ type: z.literal("address-changed"), data: z.object({}) }),
+  z.object({ type: z.literal("address-confirmed"), data: z.object({}) }),
   z.object({ type: z.literal("account-deleted"), data: z.object({}) }),
   z.object({ type: z.literal("account-restored"), data: z.object({}) }),
   z.object({
@@ -178,6 +179,8 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
       endsAt: z.string(),
       sources: z.boolean(),
       logbook: z.boolean(),
+      /** Sent to somebody by letter; to whom is not kept. */
+      mailed: z.boolean().optional(),
     }),
   }),
   z.object({
@@ -274,6 +277,8 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: "Asked for another address", detail: null };
     case "address-changed":
       return { text: "Changed the address", detail: null };
+    case "address-confirmed":
+      return { text: "Confirmed the address", detail: null };
     case "account-deleted":
       return { text: "Deleted the account", detail: "It can be brought back for 30 days." };
     case "account-restored":
@@ -337,7 +342,9 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
         text:
           entry.data.format === "averages csv"
             ? "Took the averages as CSV"
-            : `Took the distinct set as ${entry.data.format.toUpperCase()}`,
+            : entry.data.format === "outside csv"
+              ? "Took the comparison with outside structures as CSV"
+              : `Took the distinct set as ${entry.data.format.toUpperCase()}`,
         detail: null,
       };
     case "source-downloaded":
@@ -425,11 +432,12 @@ function handOverWords(entry: HandOverEntry): { text: string; detail: string | n
     case "edition-exported":
       return { text: `Took ${entry.data.file} of edition ${entry.data.number}`, detail: null };
     case "link-made": {
-      const { number, label, endsAt, sources, logbook } = entry.data;
+      const { number, label, endsAt, sources, logbook, mailed } = entry.data;
       const parts = [
         `ends ${formatDate(endsAt)}`,
         sources ? "with source files" : "without source files",
         logbook ? "with part of the logbook" : null,
+        mailed ? "sent by letter" : null,
       ];
       return {
         text: `Made a link to edition ${number}${forWhom(label)}`,

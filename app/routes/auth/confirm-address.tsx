@@ -46,7 +46,7 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
     );
   }
   return (
-    <Door title="Confirm the address" lead={`Letters of your account will go to ${loaderData.email}.`}>
+    <Door title="Confirm the address" lead={`Letters of your account go to ${loaderData.email}.`}>
       {actionData ? (
         <div role="alert">
           <Note tone="danger">{actionData.message}</Note>

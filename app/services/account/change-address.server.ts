@@ -10,12 +10,58 @@ import { newSecret, secretSha } from "../auth/secret.server.ts";
 import { type Caller, normalEmail, restingError } from "../auth/sign-in.server.ts";
 import { takeAttempt } from "../auth/throttle.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { confirmLetter } from "../mail/letters.ts";
 import { queueMail } from "../mail/queue-mail.server.ts";
-import { checkOwnPassword } from "./check-own-password.server.ts";
+import { checkOwnPassword, ownAccount } from "./check-own-password.server.ts";
 
 const CONFIRM_HOURS = 24;
 const LETTERS_A_DAY = 10;
 const newAddress = z.object({ email: z.string() });
+
+/** Keeps a secret for one address of one account; an older one of the same account ends. */
+async function keepSecret(tx: Queryable, userId: string, email: string, now: Date): Promise<string> {
+  const secret = newSecret();
+  await tx.delete(mailTokens).where(and(eq(mailTokens.userId, userId), eq(mailTokens.purpose, "address")));
+  await tx.insert(mailTokens).values({
+    tokenSha: secretSha(secret),
+    userId,
+    purpose: "address",
+    data: { email },
+    createdAt: now,
+    endsAt: new Date(now.getTime() + CONFIRM_HOURS * 3_600_000),
+  });
+  return `${env().APP_ORIGIN}/confirm-address/${secret}`;
+}
+
+/** Sends the letter that confirms the address an account has, in the transaction of the act that needs it. */
+export async function askToConfirm(
+  tx: Queryable,
+  account: { userId: string; email: string },
+  now = new Date(),
+): Promise<void> {
+  const address = await keepSecret(tx, account.userId, account.email, now);
+  await queueMail(confirmLetter({ recipient: account.email, address, hours: CONFIRM_HOURS }), tx);
+}
+
+const letterLimit = (userId: string) => ({
+  kind: "new-address",
+  subject: userId,
+  limit: LETTERS_A_DAY,
+  seconds: 86_400,
+});
+
+/**
+ * Sends the letter that confirms the account's address again; nothing where it is confirmed already.
+ *
+ * @throws DomainError too-many beyond ten letters a day
+ */
+export async function confirmAgain(options: { actor: Actor }): Promise<void> {
+  const { userId, email, confirmed } = await ownAccount(options.actor);
+  if (confirmed) return;
+  const wait = await takeAttempt(letterLimit(userId));
+  if (wait !== null) throw restingError(wait);
+  await inTransaction((tx) => askToConfirm(tx, { userId, email }));
+}
 
 /**
  * Sends a letter to a new address; the account keeps the old one until the link in it is used. The old address is told.
@@ -39,11 +85,9 @@ export async function askNewAddress(options: {
         : "This is no mail address; one looks like name@laboratory.example.";
     throw new DomainError("invalid", "Not changed", message, { faults: [{ field: "email", message }] });
   }
-  const limit = { kind: "new-address", subject: account.userId, limit: LETTERS_A_DAY, seconds: 86_400 };
-  const wait = await takeAttempt(limit);
+  const wait = await takeAttempt(letterLimit(account.userId));
   if (wait !== null) throw restingError(wait);
   const known = await db.select({ id: users.id }).from(users).where(eq(users.email, email)).limit(1);
-  const secret = newSecret();
   const now = new Date();
   await inTransaction(async (tx) => {
     await tx
@@ -57,15 +101,8 @@ export async function askNewAddress(options: {
       tx,
     );
     if (known.length > 0) return;
-    await tx.insert(mailTokens).values({
-      tokenSha: secretSha(secret),
-      userId: account.userId,
-      purpose: "address",
-      data: { email },
-      createdAt: now,
-      endsAt: new Date(now.getTime() + CONFIRM_HOURS * 3_600_000),
-    });
-    const body = `This address is to become that of a Lowlying account. This link works once, within ${CONFIRM_HOURS} hours:\n\n${env().APP_ORIGIN}/confirm-address/${secret}\n\nIf you did not ask for it, leave it: nothing happens then.`;
+    const address = await keepSecret(tx, account.userId, email, now);
+    const body = `This address is to become that of a Lowlying account. This link works once, within ${CONFIRM_HOURS} hours:\n\n${address}\n\nIf you did not ask for it, leave it: nothing happens then.`;
     await queueMail({ recipient: email, subject: "Confirm your address for Lowlying", body }, tx);
   });
 }
@@ -95,7 +132,7 @@ export async function findAddressChange(secret: string): Promise<string | null> 
 }
 
 /**
- * Makes the confirmed address the account's, and tells the old one.
+ * Takes an address as the account's own: the new one, of which the old one is told, or the one it has had from the start.
  *
  * @throws DomainError not-found where the link has ended, conflict where the address was taken meanwhile
  */
@@ -114,8 +151,15 @@ export async function confirmAddress(options: { secret: string; caller: Caller }
         .update(mailTokens)
         .set({ usedAt: new Date() })
         .where(eq(mailTokens.tokenSha, secretSha(options.secret)));
-      await tx.update(users).set({ email: change.email }).where(eq(users.id, change.userId));
+      await tx
+        .update(users)
+        .set({ email: change.email, confirmedAt: new Date() })
+        .where(eq(users.id, change.userId));
       const by = { userId: change.userId, tokenId: null, origin: options.caller.address };
+      if (change.email === change.before) {
+        await writeEntry(tx, { teamId: null }, by, { type: "address-confirmed", data: {} });
+        return;
+      }
       await writeEntry(tx, { teamId: null }, by, { type: "address-changed", data: {} });
       const body =
         "The address of your Lowlying account was changed; letters go to the new one from now on.\n\nIf it was not you, tell an owner of your team at once.";

@@ -13,19 +13,28 @@ export interface OwnAccount {
   sessionId: string;
   email: string;
   name: string;
+  /** The address was confirmed by a letter. */
+  confirmed: boolean;
 }
 
 /** Whose account it is; accounts are a person's alone, whatever a token may do. */
 export async function ownAccount(actor: Actor): Promise<OwnAccount & { passwordHash: string }> {
   if (actor.kind !== "user") throw forbidden("An account belongs to who is signed in.");
   const rows = await db
-    .select({ email: users.email, name: users.name, passwordHash: users.passwordHash })
+    .select({
+      email: users.email,
+      name: users.name,
+      passwordHash: users.passwordHash,
+      confirmedAt: users.confirmedAt,
+    })
     .from(users)
     .where(and(eq(users.id, actor.userId), isNull(users.disabledAt)))
     .limit(1);
   const row = rows[0];
   if (row === undefined) throw forbidden("This account is closed.");
-  return { ...row, userId: actor.userId, sessionId: actor.sessionId };
+  const { confirmedAt, ...person } = row;
+  const { userId, sessionId } = actor;
+  return { ...person, confirmed: confirmedAt !== null, userId, sessionId };
 }
 
 /**

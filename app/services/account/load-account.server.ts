@@ -10,9 +10,19 @@ import { UNDO_DAYS } from "./undo-days.ts";
 
 const DAY_MS = 86_400_000;
 
+/** The letters that a person may want or not; those of safety always go. */
+export interface Letters {
+  jobs: boolean;
+  links: boolean;
+  digest: boolean;
+}
+
 export interface AccountView {
   name: string;
   email: string;
+  /** False until a letter to the address was answered. */
+  confirmed: boolean;
+  letters: Letters;
   teams: TeamOfPerson[];
   sessions: SessionRow[];
   /** Deleted teams that this person, an owner, can bring back, with the day until when. */
@@ -22,7 +32,7 @@ export interface AccountView {
 /** The account of who is signed in, as its page shows it. */
 export async function loadAccount(actor: Actor): Promise<AccountView> {
   const account = await ownAccount(actor);
-  const [person, sessions, gone] = await Promise.all([
+  const [person, sessions, gone, letters] = await Promise.all([
     findPerson(actor),
     listSessions({ actor }),
     db
@@ -30,10 +40,16 @@ export async function loadAccount(actor: Actor): Promise<AccountView> {
       .from(members)
       .innerJoin(teams, and(eq(teams.id, members.teamId), isNotNull(teams.deletedAt)))
       .where(and(eq(members.userId, account.userId), eq(members.role, "owner"))),
+    db
+      .select({ jobs: users.jobLetters, links: users.linkLetters, digest: users.digest })
+      .from(users)
+      .where(eq(users.id, account.userId)),
   ]);
   return {
     name: account.name,
     email: account.email,
+    confirmed: account.confirmed,
+    letters: letters[0] ?? { jobs: true, links: true, digest: false },
     teams: person?.teams ?? [],
     sessions,
     deletedTeams: gone.flatMap(({ id, name, deletedAt }) =>
@@ -53,4 +69,25 @@ export async function renameSelf(options: { actor: Actor; name: string }): Promi
     throw new DomainError("invalid", "Not changed", message, { faults: [{ field: "name", message }] });
   }
   await inTransaction((tx) => tx.update(users).set({ name }).where(eq(users.id, account.userId)));
+}
+
+/** Sets which letters somebody wants. The first week of the digest begins with the asking. */
+export async function chooseLetters(options: { actor: Actor; letters: Letters; now?: Date }): Promise<void> {
+  const { userId } = await ownAccount(options.actor);
+  const { jobs, links, digest } = options.letters;
+  await inTransaction(async (tx) => {
+    const rows = await tx
+      .select({ digest: users.digest })
+      .from(users)
+      .where(eq(users.id, userId))
+      .for("update");
+    const begins = digest && rows[0]?.digest === false;
+    await tx
+      .update(users)
+      .set({
+        ...{ jobLetters: jobs, linkLetters: links, digest },
+        ...(begins ? { digestAt: options.now ?? new Date() } : {}),
+      })
+      .where(eq(users.id, userId));
+  });
 }

@@ -1,4 +1,4 @@
-import { and, eq, gt, isNull } from "drizzle-orm";
+import { and, eq, gt, isNull, sql } from "drizzle-orm";
 import { db, inTransaction, type Queryable } from "../../db/client.server.ts";
 import { mailTokens, users } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
@@ -63,7 +63,9 @@ export async function resetPassword(options: {
   await inTransaction(async (tx) => {
     const reset = await findReset(options.secret, tx, true);
     if (reset === null) throw ended();
-    await tx.update(users).set({ passwordHash }).where(eq(users.id, reset.userId));
+    // The letter proves the address as well.
+    const confirmedAt = sql`coalesce(${users.confirmedAt}, utc_timestamp(3))`;
+    await tx.update(users).set({ passwordHash, confirmedAt }).where(eq(users.id, reset.userId));
     await tx
       .update(mailTokens)
       .set({ usedAt: new Date() })

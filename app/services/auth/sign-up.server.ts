@@ -4,6 +4,7 @@ import { newId } from "../../db/new-id.server.ts";
 import { members, teams, users } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { DomainError, type Fault } from "../../lib/errors.ts";
+import { askToConfirm } from "../account/change-address.server.ts";
 import { forbidden } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { queueMail } from "../mail/queue-mail.server.ts";
@@ -43,7 +44,8 @@ function tellOwner(email: string): Promise<void> {
 
 /**
  * Opens an account with a team of its own, owned by its user. A known address is answered alike, in words and in time:
- * both ways hash the password and commit once, and nobody is signed in by this, since a session would tell.
+ * both ways hash the password, send one letter and commit once, and nobody is signed in by this, since a session would
+ * tell. The account works before its address is confirmed; its page says that it is not.
  *
  * @throws DomainError forbidden where sign-up is closed, invalid with `faults` by field
  */
@@ -77,6 +79,7 @@ export async function signUp(options: {
       await tx.insert(members).values({ teamId, userId, role: "owner", createdAt });
       await writeEntry(tx, { teamId }, by, { type: "sign-up", data: {} });
       await writeEntry(tx, { teamId }, by, { type: "team-made", data: { name: team } });
+      await askToConfirm(tx, { userId, email }, createdAt);
     });
   } catch (error) {
     if (!isDuplicate(error)) throw error;

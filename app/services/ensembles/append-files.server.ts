@@ -7,6 +7,7 @@ import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts
 import { recomputeComputed } from "../columns/recompute-computed.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { tellOfIntake } from "../mail/long-work.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
 import { type BatchPlace, countFiles, optionsAt } from "./batch-place.server.ts";
 import { checkSameBatch, ensureFirstBatch, findSameBatch } from "./batches.server.ts";
@@ -210,6 +211,7 @@ export async function appendFiles(options: {
   let upload: Upload | null = null;
   let place: BatchPlace | null = null;
   let at: At | null = null;
+  const began = Date.now();
   try {
     at = await accessEnsemble(options.actor, "take-in", options.ensembleId);
     for await (const part of form.parts()) {
@@ -233,8 +235,10 @@ export async function appendFiles(options: {
     const done = await finish(at, upload, place, checked);
     if (!done.added) await upload.discard();
     else await upload.store.discard();
+    tellOfIntake({ grant: at, began, ensembleId: done.ensembleId });
     return done;
   } catch (error) {
+    tellOfIntake({ grant: at, began, ensembleId: null });
     await upload?.discard();
     await form.drain();
     throw error;

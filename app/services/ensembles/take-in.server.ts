@@ -1,5 +1,6 @@
 import { uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { type Actor, accessTeam, type Grant } from "../auth/access.server.ts";
+import { tellOfIntake } from "../mail/long-work.server.ts";
 import { finishUpload, type TakenIn } from "./finish-upload.server.ts";
 import type { FormReader } from "./read-multipart.server.ts";
 import { Upload } from "./upload.server.ts";
@@ -23,6 +24,7 @@ export async function takeInFor(options: {
   const fields = new FormFields(uploadFieldsSchema, interactive ? ["team"] : []);
   let upload: Upload | null = null;
   let grant: Grant | null = null;
+  const began = Date.now();
   try {
     for await (const part of form.parts()) {
       if (part.kind === "field") {
@@ -44,8 +46,10 @@ export async function takeInFor(options: {
     const taken = await finishUpload({ upload, grant, fields: checked, interactive });
     if (!taken.created) await upload.discard();
     else await upload.store.discard();
+    tellOfIntake({ grant, began, ensembleId: taken.ensembleId });
     return taken;
   } catch (error) {
+    tellOfIntake({ grant, began, ensembleId: null });
     await upload?.discard();
     await form.drain();
     throw error;

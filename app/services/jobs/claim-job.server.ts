@@ -15,6 +15,7 @@ export interface ClaimedJob {
   payload: unknown;
   teamId: string;
   attempts: number;
+  createdAt: Date;
 }
 
 interface Party {

@@ -1,6 +1,8 @@
 import { and, eq, inArray, lt, sql } from "drizzle-orm";
 import { db, type Queryable } from "../../db/client.server.ts";
 import { jobs } from "../../db/schema.server.ts";
+import { inBackground } from "../background.server.ts";
+import { tellOfJob } from "../mail/long-work.server.ts";
 
 /** A job that keeps losing its thread or its process is given up after as many tries. */
 export const MAX_ATTEMPTS = 3;
@@ -50,6 +52,7 @@ export async function returnJob(jobId: string, holder: string): Promise<void> {
       progress: 0,
     })
     .where(mine(jobId, holder));
+  inBackground("letter of a job", () => tellOfJob(jobId, null));
 }
 
 /** Hands all jobs of this process back as if it had never begun them: a shutdown is no failed try. */

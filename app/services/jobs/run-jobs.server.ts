@@ -2,8 +2,10 @@ import { and, eq, inArray } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { jobs } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { inBackground } from "../background.server.ts";
 import { incidentNumber } from "../http.server.ts";
 import { log } from "../log.server.ts";
+import { LONG_WORK_SECONDS, tellOfJob } from "../mail/long-work.server.ts";
 import { askToStop } from "./cancel-job.server.ts";
 import { type ClaimedJob, claimJob, leaseEnd } from "./claim-job.server.ts";
 import { failJob, JobLost, recoverJobs, returnJob, stillHeld } from "./finish-job.server.ts";
@@ -32,6 +34,11 @@ async function settle(job: ClaimedJob, error: unknown): Promise<void> {
     holder,
     `The computation failed on the server. If it does again, quote ${incident}.`,
   );
+}
+
+function tellWhenLong({ id, createdAt }: ClaimedJob): void {
+  if (Date.now() - createdAt.getTime() <= LONG_WORK_SECONDS * 1000) return;
+  inBackground("letter of a job", () => tellOfJob(id, jobState().holder));
 }
 
 async function run(job: ClaimedJob): Promise<void> {
@@ -65,6 +72,7 @@ async function run(job: ClaimedJob): Promise<void> {
     } finally {
       state.running.delete(job.id);
       announceEnd(job.id);
+      tellWhenLong(job);
       wakeJobs();
     }
   };

@@ -1,15 +1,21 @@
 import { eq } from "drizzle-orm";
 import { z } from "zod";
-import { inTransaction } from "../../db/client.server.ts";
+import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
-import { editions, links, teams } from "../../db/schema.server.ts";
+import { editions, links, teams, users } from "../../db/schema.server.ts";
+import { env } from "../../env.server.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { type Actor, accessEdition } from "../auth/access.server.ts";
+import { takeAttempt } from "../auth/throttle.server.ts";
 import { notFound } from "../http.server.ts";
 import { type Doer, writeEntry } from "../logbook/write-entry.server.ts";
+import { linkLetter } from "../mail/letters.ts";
+import { queueMail } from "../mail/queue-mail.server.ts";
+import { addressSchema } from "../people/people-fields.ts";
 import { linkPrefix, linkSha, newLinkSecret } from "./link-secret.ts";
 
 const DAY_MS = 86_400_000;
+const LETTERS_A_DAY = 100;
 export const DEFAULT_LINK_DAYS = 14;
 
 export const newLinkSchema = z.strictObject({
@@ -22,6 +28,8 @@ export const newLinkSchema = z.strictObject({
     .min(1, "At least one day."),
   sources: z.boolean(),
   logbook: z.boolean(),
+  /** Whom the link is sent to by letter; kept only as long as the letter waits. */
+  email: addressSchema.nullable().optional(),
 });
 export type NewLink = z.infer<typeof newLinkSchema>;
 
@@ -45,6 +53,26 @@ export function needDays(days: number, most: number): void {
   throw new DomainError("invalid", "Too long", message, { faults: [{ field: "days", message }] });
 }
 
+/** Who shares, as the letter names them. */
+async function makerName(tx: Transaction, userId: string | null): Promise<string> {
+  if (userId === null) return "Somebody";
+  const rows = await tx.select({ name: users.name }).from(users).where(eq(users.id, userId));
+  return rows[0]?.name ?? "Somebody";
+}
+
+/** Refuses where a team has sent as many links by letter as it may in a day. */
+async function needLetter(teamId: string): Promise<void> {
+  const limit = { kind: "link-letter", subject: teamId, limit: LETTERS_A_DAY, seconds: 86_400 };
+  const wait = await takeAttempt(limit);
+  if (wait === null) return;
+  const message =
+    "The team has sent 100 links by letter today. Leave this empty and send the address yourself.";
+  throw new DomainError("too-many", "Not made", message, {
+    faults: [{ field: "email", message }],
+    extra: { retryAfter: wait },
+  });
+}
+
 /**
  * Makes a link to an edition; access has been decided before.
  *
@@ -55,6 +83,8 @@ export async function makeLinkFor(at: At, asked: NewLink, now = new Date()): Pro
   const secret = newLinkSecret();
   const prefix = linkPrefix(secret);
   const endsAt = new Date(now.getTime() + asked.days * DAY_MS);
+  const email = asked.email ?? null;
+  if (email !== null) await needLetter(at.teamId);
   await inTransaction(async (tx) => {
     const rows = await tx
       .select({ number: editions.number, linkDays: teams.linkDays })
@@ -81,13 +111,21 @@ export async function makeLinkFor(at: At, asked: NewLink, now = new Date()): Pro
     const { label, sources, logbook } = asked;
     await writeEntry(tx, at, at, {
       type: "link-made",
-      data: { number: row.number, prefix, label, endsAt: endsAt.toISOString(), sources, logbook },
+      data: {
+        ...{ number: row.number, prefix, label, endsAt: endsAt.toISOString(), sources, logbook },
+        ...(email === null ? {} : { mailed: true }),
+      },
     });
+    if (email === null) return;
+    const by = await makerName(tx, at.userId);
+    const address = `${env().APP_ORIGIN}/e/${secret}`;
+    const day = endsAt.toISOString().slice(0, 10);
+    await queueMail(linkLetter({ recipient: email, by, address, day }), tx);
   });
   return { secret, prefix, endsAt };
 }
 
-/** Makes a link as a person. The secret is in the answer and nowhere else. */
+/** Makes a link as a person. The secret is in the answer, in the letter where one was asked for, and nowhere else. */
 export async function makeLink(options: {
   actor: Actor;
   ensembleId: string;

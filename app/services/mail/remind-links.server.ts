@@ -12,7 +12,10 @@ export async function remindOfLinks(now = new Date()): Promise<number> {
   const rows = await db
     .select({ id: links.id, endsAt: links.endsAt, createdAt: links.createdAt, email: users.email })
     .from(links)
-    .innerJoin(users, and(eq(users.id, links.createdBy), isNull(users.disabledAt)))
+    .innerJoin(
+      users,
+      and(eq(users.id, links.createdBy), isNull(users.disabledAt), eq(users.linkLetters, true)),
+    )
     .where(
       and(isNull(links.revokedAt), isNull(links.remindedAt), gt(links.endsAt, now), lt(links.endsAt, soon)),
     );

@@ -161,7 +161,15 @@ export async function joinByPassword(options: {
   const [userId, createdAt] = [newId(), new Date()];
   try {
     return await inTransaction(async (tx) => {
-      await tx.insert(users).values({ id: userId, email: open.email, name, passwordHash, createdAt });
+      const account = {
+        id: userId,
+        email: open.email,
+        name,
+        passwordHash,
+        createdAt,
+        confirmedAt: createdAt,
+      };
+      await tx.insert(users).values(account);
       const teamId = await joinTeam(tx, secret, userId, name, caller.address);
       const by = { userId, tokenId: null, origin: caller.address };
       await writeEntry(tx, { teamId: null }, by, { type: "sign-up", data: {} });

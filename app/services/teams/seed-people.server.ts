@@ -38,7 +38,8 @@ export async function seedPeople(password: string, now = new Date()): Promise<vo
       const known = rows[0];
       if (known === undefined) {
         const id = newId();
-        await tx.insert(users).values({ id, email, name, passwordHash, demo: true, createdAt: now });
+        const account = { id, email, name, passwordHash, demo: true, createdAt: now, confirmedAt: now };
+        await tx.insert(users).values(account);
         await tx.insert(members).values({ teamId, userId: id, role, createdAt: now });
         return;
       }

@@ -4,6 +4,7 @@ import { type Actor, accessTeam } from "../auth/access.server.ts";
 import { makeToken, type NewToken } from "../auth/make-token.server.ts";
 import { forbidden } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { tellOfToken } from "./tell-of-token.server.ts";
 
 export const newTokenSchema = z.strictObject({
   name: z.string().trim().min(1, "Say what the token is for.").max(120),
@@ -24,6 +25,7 @@ export async function createToken(options: {
     throw forbidden('A reader\'s token may only read. Choose "read only".');
   }
   const made = await makeToken({ ...asked, teamId: grant.teamId, userId: grant.userId });
+  await tellOfToken(db, { ...grant, userId: grant.userId }, made.prefix, "made");
   await writeEntry(db, grant, grant, {
     type: "token-made",
     data: {

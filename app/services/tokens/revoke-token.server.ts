@@ -4,6 +4,7 @@ import { apiTokens } from "../../db/schema.server.ts";
 import { type Actor, accessTeam } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { tellOfToken } from "./tell-of-token.server.ts";
 
 /** Ends a token at once: one's own, or as an owner anybody's in the team. */
 export async function revokeToken(options: { actor: Actor; teamId: string; tokenId: string }): Promise<void> {
@@ -12,7 +13,7 @@ export async function revokeToken(options: { actor: Actor; teamId: string; token
     const mine =
       grant.role === "owner" || grant.userId === null ? undefined : eq(apiTokens.userId, grant.userId);
     const rows = await tx
-      .select({ prefix: apiTokens.prefix, name: apiTokens.name })
+      .select({ prefix: apiTokens.prefix, name: apiTokens.name, userId: apiTokens.userId })
       .from(apiTokens)
       .where(
         and(
@@ -26,6 +27,8 @@ export async function revokeToken(options: { actor: Actor; teamId: string; token
     const token = rows[0];
     if (token === undefined) throw notFound();
     await tx.update(apiTokens).set({ revokedAt: new Date() }).where(eq(apiTokens.id, options.tokenId));
-    await writeEntry(tx, grant, grant, { type: "token-revoked", data: token });
+    const { userId, ...data } = token;
+    await writeEntry(tx, grant, grant, { type: "token-revoked", data });
+    await tellOfToken(tx, { teamId: grant.teamId, userId }, token.prefix, "revoked");
   });
 }
