@@ -109,6 +109,8 @@ export interface IntakeView {
   waiting: number;
   messages: IntakeMessage[];
   questions: IntakeQuestion[];
+  /** The number that was named as the energy, with the files or since; null where the only one was taken. */
+  energyFrom: string | null;
 }
 
 /** Row of the table of ensembles. */

@@ -34,6 +34,9 @@ describe("reading again from the page of intake", () => {
     const form = { level: "Second", energyUnit: "hartree", energyFrom: "key:energy", energyKind: "free" };
     expect((await send(analyst.cookie, { ...form, energyTemperature: "298.15" })).status).toBe(200);
     expect(await levels()).toMatchObject([{ name: "Second", unit: "hartree" }]);
+    // The form starts from what is in force, the number too.
+    const page = await (await call(`/ensembles/${id}/intake`, { cookie: analyst.cookie })).text();
+    expect(page).toMatch(/<input[^>]*name="energyFrom"[^>]*value="key:energy"/);
   });
 
   it("refuses what is no answer, in words, and changes nothing", async () => {

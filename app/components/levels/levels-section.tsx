@@ -65,7 +65,8 @@ function TooFew({ levels }: { levels: readonly LevelData[] }) {
       >
         <p>
           Bring a table of energies (a column for the frame, one for the energy with its unit) or a structure
-          file of the same frames in any order.
+          file of the same frames in any order; a property of the files that holds energies can be used as a
+          level there too.
           {only ? " A plan can already be drafted with an error typed in for the next level." : ""}
         </p>
       </StatePanel>

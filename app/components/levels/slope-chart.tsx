@@ -3,6 +3,7 @@ import { ChartText, type Choose, Plot, usePlot } from "~/components/charts/plot"
 import { depthColour } from "~/components/ui/depth-strip";
 import { formatCount, plural } from "~/lib/format";
 import { placeRanks } from "~/lib/stats/ranks";
+import { rankTicks } from "~/lib/workbench/ticks";
 import { type PairPoint, percent } from "./pair-points";
 import type { Comparison } from "./use-comparison";
 
@@ -79,7 +80,9 @@ export function SlopeChart({
           title: "rank, 1 is the lowest",
           low: -most - 0.5,
           high: -0.5,
-          ticks: rankTicks(most),
+          ticks: rankTicks(most)
+            .map((rank) => -rank)
+            .reverse(),
           tickText: (value) => formatCount(-value),
         }}
         points={shown.map((s) => ({
@@ -94,13 +97,6 @@ export function SlopeChart({
       </Plot>
     </ChartFrame>
   );
-}
-
-function rankTicks(most: number): number[] {
-  const step = most <= 8 ? 1 : most <= 20 ? 5 : most <= 60 ? 10 : 10 ** Math.ceil(Math.log10(most / 6));
-  const ticks = [-1];
-  for (let rank = step; rank <= most; rank += step) if (rank > 1) ticks.push(-rank);
-  return ticks.reverse();
 }
 
 function SlopeLayer({ slopes, selected }: { slopes: readonly Slope[]; selected: ReadonlySet<number> }) {

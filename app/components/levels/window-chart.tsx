@@ -152,7 +152,7 @@ function DropLines({
         const x = plot.x(reading.kcal);
         const y = plot.y(100 * kept);
         // The leftmost reading goes lowest: its words then have the room to the right below the others.
-        const foot = plot.bottom - 44 - ((all.length - 1 - k) * (height - 130)) / Math.max(1, all.length) - 0;
+        const foot = plot.bottom - 44 - ((all.length - 1 - k) * (height - 130)) / Math.max(1, all.length);
         const words = `${formatEnergy(reading.kcal)} kcal/mol, ${plural(reading.count, "conformer")}`;
         const end = x + 6.2 * words.length > plot.right;
         const colour = reading.mark ? "var(--color-mark)" : "var(--color-ink-3)";

@@ -283,7 +283,7 @@ function StepRow({
       <Td align="right" className="max-xl:hidden">
         {outcome ? formatCount(Math.round(outcome.in.mean)) : ABSENT}
       </Td>
-      <Td wrap>
+      <Td wrap className="max-sm:hidden">
         <CutFields
           cut={step.cut}
           outcome={outcome}

@@ -87,7 +87,7 @@ function AnswerFields({ intake }: { intake: IntakeView }) {
         maxLength={200}
         autoComplete="off"
         spellCheck={false}
-        defaultValue={answered("energy-from") ?? ""}
+        defaultValue={intake.energyFrom ?? ""}
         placeholder="key:NAME, number:N, field:NAME or none"
         help="Empty: the only one there is, else it is asked."
       />

@@ -33,3 +33,21 @@ export function tickDigits(ticks: readonly number[]): number {
     ...ticks.map((tick) => (String(Number(tick.toPrecision(10))).split(".")[1] ?? "").length),
   );
 }
+
+/**
+ * Ranks that an axis of ranks names: the first, then every 1, 2, 5, 10, 20, ... so that there are at most nine.
+ *
+ * @param most the deepest rank shown
+ * @example rankTicks(24) // [1, 5, 10, 15, 20]
+ */
+export function rankTicks(most: number): number[] {
+  let step = 1;
+  for (let decade = 1; most / step > 8; decade *= 10) {
+    for (const part of [2, 5, 10]) {
+      if (most / step > 8) step = part * decade;
+    }
+  }
+  const ticks = [1];
+  for (let rank = step; rank <= most; rank += step) if (rank > 1) ticks.push(rank);
+  return ticks;
+}

@@ -1,7 +1,7 @@
 import { and, asc, eq, sql } from "drizzle-orm";
 import { z } from "zod";
 import { db, type Queryable } from "../../db/client.server.ts";
-import { frames, intakeMessages, questions } from "../../db/schema.server.ts";
+import { ensembles, frames, intakeMessages, questions } from "../../db/schema.server.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { HoldReason, IntakeMessage, IntakeQuestion, QuestionOption } from "../../lib/intake/report.ts";
 import type { FrameView, IntakeView } from "../../lib/views.ts";
@@ -94,13 +94,16 @@ async function intakeStrip(ensembleId: string): Promise<string> {
 /** The intake report of an ensemble. */
 export async function loadIntake(options: { actor: Actor; ensembleId: string }): Promise<IntakeView> {
   const { ensembleId } = await accessEnsemble(options.actor, "read", options.ensembleId);
-  const [strip, held, remarked, messages, asked] = await Promise.all([
+  const [strip, held, remarked, messages, asked, own] = await Promise.all([
     intakeStrip(ensembleId),
     findFrames(ensembleId, "held"),
     findFrames(ensembleId, "remarked"),
     findMessages(ensembleId),
     findQuestions(ensembleId),
+    db.select({ answers: ensembles.answers }).from(ensembles).where(eq(ensembles.id, ensembleId)),
   ]);
   const waiting = strip.split("w").length - 1;
-  return { strip, held, remarked, waiting, messages, questions: asked };
+  const answered = asked.find(({ code }) => code === "energy-from")?.answered;
+  const energyFrom = answered ?? own[0]?.answers.energyFrom ?? null;
+  return { strip, held, remarked, waiting, messages, questions: asked, energyFrom };
 }
