@@ -3,7 +3,7 @@ import { db } from "~/db/client.server";
 import { columns } from "~/db/schema.server";
 import type { Actor } from "~/services/auth/access.server";
 import { freezeEdition } from "~/services/editions/freeze-edition.server";
-import { makeLink } from "~/services/links/make-link.server";
+import { makeLink, type NewLink } from "~/services/links/make-link.server";
 import { type makeLab, reference, sifted, takenIn } from "./upload";
 
 export const CONTACT = "Ask Robin of the modelling group";
@@ -34,7 +34,7 @@ export function freeze(
 export async function link(
   actor: Actor,
   at: { ensembleId: string; number: number },
-  more: Partial<{ days: number; sources: boolean; logbook: boolean; label: string }> = {},
+  more: Partial<NewLink> = {},
 ) {
   const { ensembleId, number } = at;
   const asked = { label: "Partner", contact: CONTACT, days: 14, sources: false, logbook: false, ...more };

@@ -2,7 +2,7 @@ import { eq } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { newId } from "~/db/new-id.server";
-import { ensembles, links, logbook, teams } from "~/db/schema.server";
+import { ensembles, links, logbook, mailQueue, teams } from "~/db/schema.server";
 import { endLink } from "~/services/links/end-link.server";
 import { newLinkSecret } from "~/services/links/link-secret";
 import { findLinks } from "~/services/links/list-links.server";
@@ -54,6 +54,22 @@ const idOf = async (prefix: string) => {
   if (id === undefined) throw new Error("no link");
   return id;
 };
+
+describe("a link sent by letter", () => {
+  it("says who shares and until when, and nothing of what it shows", async () => {
+    const email = `${newId()}@partner.example`;
+    const { secret } = await makeLiveLink({ email });
+    const [letter] = await db.select().from(mailQueue).where(eq(mailQueue.recipient, email));
+    expect(letter?.body).toContain(`/e/${secret}`);
+    const told = `${letter?.subject} ${letter?.body}`;
+    expect(told).not.toMatch(/ac-ala|For the partner|second part|Ask Robin|C6H12|MMFF|Estuary/);
+    // Whom it went to stands nowhere but in the queue.
+    const entries = await db.select().from(logbook).where(eq(logbook.type, "link-made"));
+    expect(entries.at(-1)?.data).toMatchObject({ mailed: true });
+    expect(JSON.stringify(entries)).not.toContain(email);
+    await expect(makeLiveLink({ email: "nobody" })).rejects.toThrow("no mail address");
+  });
+});
 
 describe("a live link", () => {
   it("opens the edition, its files and its coordinates, and nothing is kept on the way (D05, B08)", async () => {

@@ -20,7 +20,7 @@ import {
 import { askNewAddress, confirmAddress, findAddressChange } from "~/services/account/change-address.server";
 import { changePassword } from "~/services/account/change-password.server";
 import { deleteAccount, restoreAccount } from "~/services/account/delete-account.server";
-import { loadAccount } from "~/services/account/load-account.server";
+import { chooseLetters, loadAccount } from "~/services/account/load-account.server";
 import { endOwnSessions, listSessions } from "~/services/account/sessions.server";
 import type { Actor } from "~/services/auth/access.server";
 import { accessTeam } from "~/services/auth/access.server";
@@ -401,6 +401,9 @@ describe("the end of a link", () => {
     await db.insert(links).values([link(14, 1), link(2, 2)]);
     expect(await remindOfLinks(now)).toBe(0);
     const later = new Date(now.getTime() + 11.5 * DAY_MS);
+    await chooseLetters({ actor: owner.actor, letters: { jobs: true, links: false, digest: false } });
+    expect(await remindOfLinks(later)).toBe(0);
+    await chooseLetters({ actor: owner.actor, letters: { jobs: true, links: true, digest: false } });
     expect(await remindOfLinks(later)).toBe(1);
     expect(await remindOfLinks(later)).toBe(0);
     expect((await lettersTo(owner.email)).map(({ subject }) => subject)).toEqual([
