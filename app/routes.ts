@@ -5,6 +5,7 @@ export default [
   index("routes/home.tsx"),
   route("methods", "routes/methods.tsx"),
   route("formats", "routes/formats.tsx"),
+  route("words", "routes/words.tsx"),
   route("api", "routes/api-reference.tsx"),
   route("theme", "routes/theme.ts"),
 
@@ -65,6 +66,7 @@ export default [
   route("files/sifts/:id/pair-matrix", "routes/files/new-matrix.ts"),
   route("files/matrices/:id", "routes/files/matrix.ts"),
   route("files/matrices/:id/distances.csv", "routes/files/matrix-csv.ts"),
+  route("files/sifts/:id/outside.csv", "routes/files/outside-csv.ts"),
   route("files/sifts/:id/export.xyz", "routes/files/export-xyz.ts"),
   route("files/sifts/:id/export.sdf", "routes/files/export-sdf.ts"),
   route("files/sifts/:id/export.csv", "routes/files/export-csv.ts"),

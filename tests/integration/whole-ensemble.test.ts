@@ -166,8 +166,18 @@ describe("a structure from outside", () => {
       cookie,
       body: formOf([{ name, content }], fields),
     });
-  const list = (): Promise<OutsideView[]> =>
-    listOutside({ actor: { kind: "user", userId: lab.analyst.id, sessionId: "" }, ensembleId });
+  const list = (): Promise<OutsideView[]> => listOutside(ensembleId);
+  const page = async (search = "") =>
+    (await (await asAnalyst(`/ensembles/${ensembleId}/compare${search}`)).text())
+      .replaceAll(/<script[\s\S]*?<\/script>/g, "")
+      .replaceAll(/<!-- -->/g, "");
+  const csvOf = async (outside: string) => {
+    const text = await (await asAnalyst(`/files/sifts/${siftId}/outside.csv?outside=${outside}`)).text();
+    const [head = "", ...lines] = text.trimEnd().split("\r\n");
+    return lines.map((line) =>
+      Object.fromEntries(line.split(",").map((cell, k) => [head.split(",")[k], cell])),
+    );
+  };
   /** The first frame, atoms in reverse. */
   const pose = (comment: string, keep = (_line: string) => true) => {
     const atoms = firstFrame.slice(2).filter(keep).reverse();
@@ -187,6 +197,27 @@ describe("a structure from outside", () => {
     const lowest = Math.min(...[...file.matchAll(/energy=(\S+)/g)].map(([, text]) => Number(text)));
     expect(found?.strain?.kcal).toBeCloseTo(energy + 2.5 - lowest, 9);
     expect(found?.sha256).toMatch(/^[0-9a-f]{64}$/);
+  });
+
+  it("is compared on the server: page and CSV read without script", async () => {
+    const [{ id = "", strain = null } = {}] = (await list()).slice(-1);
+    const rows = await csvOf(id);
+    expect(rows.map(({ frame }) => Number(frame)).sort((a, b) => a - b)).toEqual(
+      [...kept].sort((a, b) => a - b),
+    );
+    // Frame 1 itself, or the conformer that it repeats within the tolerance of the sift.
+    expect(Number(rows[0]?.["RMSD [Å]"])).toBeLessThan(0.2);
+    const rmsds = rows.map((row) => Number(row["RMSD [Å]"]));
+    expect(rmsds).toEqual([...rmsds].sort((a, b) => a - b));
+    expect(new Set(rows.map(({ structure }) => structure))).toEqual(new Set(["pose.xyz"]));
+    const above = Number(rows[0]?.["energy of the structure above the lowest [kcal/mol]"]);
+    expect(above).toBeCloseTo(strain?.kcal ?? Number.NaN, 9);
+    const html = await page(`?outside=${id}`);
+    expect(html).toContain(`pose.xyz is nearest to ${rows[0]?.conformer}`);
+    expect(html).toContain("Strain, together");
+    expect(html).toContain("was mapped onto the molecule by its bonds");
+    expect(html).toContain("Torsions of");
+    expect((await asAnalyst(`/files/sifts/${siftId}/outside.csv?outside=none`)).status).toBe(404);
   });
 
   it("may come without hydrogens, from an SDF with its own bonds, and without an energy", async () => {
@@ -224,6 +255,23 @@ describe("a structure from outside", () => {
     expect(found?.data.energy).toBeNull();
     expect(found?.data.map.filter((atom) => atom >= 0)).toHaveLength(4);
     expect(found?.data.remarks.join()).toContain("no hydrogens");
+    const html = await page();
+    expect(html).toContain("ligand.sdf is nearest to");
+    expect(html).toContain("so its strain is not known");
+    // The other one is a link away, where no script fills a list.
+    expect(html).toMatch(/href="[^"]*outside=[a-z2-7]{16}[^"]*"[^>]*>pose\.xyz</);
+  });
+
+  it("without its hydrogens has no strain, whatever number it carries", async () => {
+    const comment = firstFrame[1] ?? "";
+    await send(
+      "bare.xyz",
+      pose(comment, (line) => !/^\s*H/.test(line)),
+    );
+    const [found] = (await list()).slice(-1);
+    expect(found?.data.energy).not.toBeNull();
+    expect(found?.strain).toBeNull();
+    expect(await page()).toContain("the number is not that of this molecule");
   });
 
   it.each([
@@ -251,6 +299,7 @@ describe("a structure from outside", () => {
     expect((await act("remove")).status).toBe(200);
     expect((await list()).map((one) => one.id)).not.toContain(id);
     expect((await act("remove")).status).toBe(404);
+    expect(await page()).toContain("Deleted within thirty days");
     expect((await act("restore")).status).toBe(200);
     expect((await list()).map((one) => one.id)).toContain(id);
     const types = (await db.select().from(logbook).where(eq(logbook.ensembleId, ensembleId))).map(

@@ -8,7 +8,8 @@ import type { LevelView } from "~/lib/views";
 
 /** What the page's action answers. */
 export interface OutsideAnswerToForm {
-  ok: boolean;
+  /** Absent where the server refused: then `message` says why. */
+  ok?: boolean;
   /** Id of what was added, or brought back. */
   id?: string;
   name?: string;
@@ -19,9 +20,12 @@ export interface OutsideAnswerToForm {
 /** A crystal or a bound pose, with its energy where it carries one at a level of the ensemble. */
 export function AddStructure({
   levels,
+  answered,
   onAdded,
 }: {
   levels: readonly LevelView[];
+  /** What the server answered where the form was sent without script. */
+  answered: OutsideAnswerToForm | undefined;
   onAdded: (id: string) => void;
 }) {
   const sending = useFetcher<OutsideAnswerToForm>();
@@ -39,7 +43,8 @@ export function AddStructure({
     }
   }, [data, onAdded]);
   const busy = sending.state !== "idle";
-  const failed = data && !data.ok ? data : null;
+  const answer = data ?? answered;
+  const failed = answer && !answer.ok ? answer : null;
   const chosen = levels.find(({ id }) => id === level);
   return (
     <sending.Form

@@ -1,48 +1,43 @@
-import { useMemo, useState } from "react";
-import { saveText } from "~/components/charts/export-figure";
-import { Button } from "~/components/ui/button";
+import { Download } from "lucide-react";
+import { useState } from "react";
+import { href } from "react-router";
+import { buttonClass } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { PopulationBar } from "~/components/workbench/population-bar";
+import { useWorkbench } from "~/components/workbench/workbench-context";
 import { fixed, formatAngle, formatEnergy, formatPopulation, formatRmsd } from "~/lib/format";
-import type { TorsionApart } from "~/lib/outside/compare-outside";
-import type { OutsideRow } from "~/lib/outside/finding";
-import { toCsv } from "~/lib/workbench/tsv";
+import { type OutsideChoice, writeOutsideChoice } from "~/lib/outside/choice";
+import { searchOf } from "~/lib/url-state";
+import type { Comparison } from "./use-comparison";
 
 const FEW = 6;
 const MANY = 100;
 
 /** The conformers nearest to the outside structure. */
 export function NearestTable({
-  rows,
-  over,
-  near,
-  fitOf,
-  labels,
+  comparison,
+  choice,
   onOver,
 }: {
-  /** Nearest first. */
-  rows: readonly OutsideRow[];
-  over: OutsideRow | null;
-  near: number;
-  fitOf: (row: OutsideRow) => { torsions: readonly TorsionApart[] } | null;
-  labels: readonly string[];
+  comparison: Comparison;
+  choice: OutsideChoice;
   onOver: (frame: number) => void;
 }) {
+  const { near: rows, over, labels, fits, structure } = comparison;
   const [all, setAll] = useState(false);
-  const within = rows.filter((row) => row.rmsd <= near).length;
+  const within = rows.filter((row) => row.rmsd <= choice.near).length;
   const most = all ? MANY : Math.max(FEW, Math.min(within, 12));
-  const shown = useMemo(() => rows.slice(0, most), [rows, most]);
-  const worst = useMemo(() => shown.map((row) => largest(fitOf(row)?.torsions ?? [])), [shown, fitOf]);
+  const shown = rows.slice(0, most);
+  const torsionsOf = new Map(fits.map(({ frame, torsions }) => [frame, torsions]));
+  const worst = shown.map(({ frame }) => largest(torsionsOf.get(frame) ?? []));
   const widest = rows.reduce((top, row) => Math.max(top, row.population ?? 0), 0);
   const rest = rows.slice(shown.length);
   return (
     <div className="mt-9">
       <BlockHead title="Nearest conformers">
-        <Button size="sm" onClick={() => saveText("nearest-conformers.csv", "text/csv", csvOf(rows))}>
-          CSV
-        </Button>
+        <NearestCsv structure={structure.id} choice={choice} />
       </BlockHead>
       <Table aria-label="Conformers nearest to the outside structure">
         <thead>
@@ -62,14 +57,14 @@ export function NearestTable({
             <Th align="right" unit="°" className="max-sm:hidden">
               Largest torsion apart
             </Th>
-            <Th>
+            <Th className="noscript:hidden print:hidden">
               <span className="sr-only">Lay over</span>
             </Th>
           </tr>
         </thead>
         <tbody>
           {shown.map((row, k) => (
-            <Tr key={row.index} selected={row.frame === over?.frame}>
+            <Tr key={row.index} selected={row.frame === over.frame}>
               <Td>
                 <b className="font-semibold">{row.name}</b>
               </Td>
@@ -96,8 +91,8 @@ export function NearestTable({
                 {formatAngle(worst[k]?.apart)}{" "}
                 <span className="text-ink-3">{labels[worst[k]?.at ?? -1] ?? ""}</span>
               </Td>
-              <Td align="right">
-                {row.frame === over?.frame ? (
+              <Td align="right" className="noscript:hidden print:hidden">
+                {row.frame === over.frame ? (
                   <span className="text-ink-3">shown</span>
                 ) : (
                   <TextButton onClick={() => onOver(row.frame)}>
@@ -112,40 +107,39 @@ export function NearestTable({
       {rest.length > 0 ? (
         <p className="mt-2 text-xs text-ink-3">
           {rest.length} more, {fixed(rest[0]?.rmsd, 1)} to {fixed(rest.at(-1)?.rmsd, 1)} Å away.{" "}
-          {all ? "The CSV has them all." : <TextButton onClick={() => setAll(true)}>Show more</TextButton>}
+          {all ? (
+            "The CSV has them all."
+          ) : (
+            <TextButton className="noscript:hidden print:hidden" onClick={() => setAll(true)}>
+              Show more
+            </TextButton>
+          )}
         </p>
       ) : null}
     </div>
   );
 }
 
-function largest(torsions: readonly TorsionApart[]): { at: number; apart: number } | null {
+/** The server writes it, so that it comes without script, too, and with every digit. */
+function NearestCsv({ structure, choice }: { structure: string; choice: OutsideChoice }) {
+  const { sift, state } = useWorkbench();
+  if (sift === null) return null;
+  const params = writeOutsideChoice({ ...choice, outside: structure, over: null }, new URLSearchParams());
+  params.set("temperature", String(state.temperatureK));
+  params.set("weights", state.weights);
+  const address = href("/files/sifts/:id/outside.csv", { id: sift.id });
+  return (
+    <a className={buttonClass({ size: "sm" })} href={`${address}${searchOf(params)}`} download>
+      <Download aria-hidden="true" />
+      CSV
+    </a>
+  );
+}
+
+function largest(torsions: readonly { apart: number | null }[]): { at: number; apart: number } | null {
   let found: { at: number; apart: number } | null = null;
   for (const [at, { apart }] of torsions.entries()) {
     if (apart !== null && (found === null || apart > found.apart)) found = { at, apart };
   }
   return found;
-}
-
-function csvOf(rows: readonly OutsideRow[]): string {
-  return toCsv(
-    [
-      "conformer",
-      "frame",
-      "RMSD [Å]",
-      "as",
-      "other hand RMSD [Å]",
-      "relative energy [kcal/mol]",
-      "population",
-    ],
-    rows.map((row) => [
-      row.name,
-      row.frame,
-      row.rmsd,
-      row.mirror ? "mirror image" : "same hand",
-      row.otherHand,
-      row.relativeEnergy,
-      row.population,
-    ]),
-  );
 }

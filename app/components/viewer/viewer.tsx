@@ -12,7 +12,7 @@ import { type LazyCanvas, useCanvas, useStable } from "./use-canvas";
 import { useFullScreen } from "./use-full-screen";
 import { useGestures } from "./use-gestures";
 import { useView } from "./use-view";
-import { HydrogenSegments, ViewBar } from "./view-bar";
+import { fewerHydrogens, HydrogenSegments, type Modes, ViewBar } from "./view-bar";
 import { ViewSurface } from "./view-surface";
 import { ViewTools } from "./view-tools";
 
@@ -32,7 +32,11 @@ export interface ViewerProps {
   picked: readonly number[];
   onPick(atoms: number[]): void;
   hydrogens: HydrogenMode;
+  /** What is shown has no more hydrogens than these; all where left out. */
+  mostHydrogens?: HydrogenMode;
   mode: ViewMode;
+  /** Arrangements to choose from; none where there is nothing to arrange. Those of conformers where left out. */
+  modes?: Modes;
   onMode(mode: ViewMode): void;
   onHydrogens(hydrogens: HydrogenMode): void;
   caption: { strong: string; rest: string };
@@ -54,7 +58,8 @@ export function Viewer(props: ViewerProps) {
   const { elements, picked, onPick, caption, measures, ghost } = props;
   // Only a picked hydrogen changes what is drawn: other picks must not build the scene again.
   const always = useStable(picked.filter((atom) => elements[atom] === 1));
-  const view = useView({ ...props, always });
+  const drawnHydrogens = fewerHydrogens(props.hydrogens, props.mostHydrogens ?? "all");
+  const view = useView({ ...props, hydrogens: drawnHydrogens, always });
   const { scene, stage, camera } = view;
   const canvas = useCanvas();
   const [numbers, setNumbers] = useState(false);
@@ -136,8 +141,10 @@ function ViewOptions({
     <>
       <ViewBar
         mode={props.mode}
+        modes={props.modes}
         onMode={props.onMode}
         hydrogens={props.hydrogens}
+        mostHydrogens={props.mostHydrogens}
         onHydrogens={props.onHydrogens}
         end={
           <button
@@ -152,7 +159,11 @@ function ViewOptions({
       />
       <div className={`mt-3 grid gap-3 print:hidden ${open ? "" : "max-lg:hidden"}`}>
         <div className="flex flex-wrap items-center gap-x-6 gap-y-2 lg:hidden">
-          <HydrogenSegments hydrogens={props.hydrogens} onHydrogens={props.onHydrogens} />
+          <HydrogenSegments
+            hydrogens={props.hydrogens}
+            most={props.mostHydrogens}
+            onHydrogens={props.onHydrogens}
+          />
           <Checkbox checked={numbers} onChange={onNumbers}>
             Atom numbers
           </Checkbox>

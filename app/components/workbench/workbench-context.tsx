@@ -209,7 +209,7 @@ function useMeasures({
   );
   // Which frames are overlaid hangs on the populations; while the temperature moves it need not keep up.
   const settled = useDeferredValue(rows);
-  const distances = ["populations", "distinct-set", "compare"].includes(section);
+  const distances = ["populations", "distinct-set"].includes(section);
   const wanted = useMemo(() => {
     const overlaid = byPopulation(settled)
       .slice(0, MAX_OVERLAID)

@@ -2,7 +2,7 @@ import { ArrowRight, Link2 } from "lucide-react";
 import { type ReactNode, useEffect, useMemo } from "react";
 import { href, useLocation, useNavigation, useRevalidator } from "react-router";
 import { AppShell, pageClass } from "~/components/layout/app-shell";
-import { OutsideViewPanel } from "~/components/outside/outside-view";
+import { OutsideTorsions, OutsideViewPanel } from "~/components/outside/outside-view";
 import { Button, ButtonLink } from "~/components/ui/button";
 import { showToast } from "~/components/ui/toast";
 import { hasEnded, useRunningSift } from "~/hooks/use-sift";
@@ -116,6 +116,7 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
           <p className="hidden max-w-read text-ink-3 noscript:block">
             The 3D view needs script. What it measures and what is drawn beside it stands in the tables.
           </p>
+          {section === "compare" ? <OutsideTorsions /> : null}
           {section === "intake" ? <FilePanel /> : null}
         </aside>
         <div className="min-w-0">{children}</div>

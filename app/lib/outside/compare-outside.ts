@@ -56,6 +56,16 @@ export class OutsideComparer {
     this.outside = [this.shapeOf(structure.positions), this.shapeOf(structure.positions.map((x) => -x))];
   }
 
+  /** Nodes that all comparisons so far have cost. */
+  get nodes(): number {
+    return this.comparer.nodes;
+  }
+
+  /** Nodes that one comparison may cost from now on; where that is met its result is a bound from above. */
+  limitNodes(limit: number): void {
+    this.comparer.nodeLimit = limit;
+  }
+
   /** RMSDs of all frames of a block. */
   compare(block: FrameBlock): Nearness {
     const found: Nearness = {

@@ -1,5 +1,4 @@
 import { capital, countWord, fixed, formatEnergy, formatPercent, plural, withUnit } from "../format.ts";
-import type { TorsionApart } from "./compare-outside.ts";
 
 /** A conformer as it lies to an outside structure. */
 export interface OutsideRow {
@@ -52,6 +51,11 @@ export function nearestRows(
 
 const AGREES_DEGREES = 15;
 
+/** How far a torsion of the structure is from that of the nearest conformer, degrees; null where it has none. */
+interface Apart {
+  apart: number | null;
+}
+
 /**
  * What the page says first of an outside structure.
  *
@@ -63,7 +67,7 @@ export function outsideFinding(
   options: {
     strain: number | null;
     near: number;
-    torsions: readonly TorsionApart[];
+    torsions: readonly Apart[];
     labels: readonly string[];
   },
 ): { text: string; second: string } | null {
@@ -107,7 +111,7 @@ function torsionWords({
   torsions,
   labels,
 }: {
-  torsions: readonly TorsionApart[];
+  torsions: readonly Apart[];
   labels: readonly string[];
 }): string {
   const known = torsions.flatMap(({ apart }, k) =>

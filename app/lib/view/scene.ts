@@ -21,7 +21,8 @@ export interface ViewConformer {
   selected: boolean;
   /** Flat pairs from 0 where they differ from the group's. */
   bonds?: number[];
-  tone?: "held";
+  /** "outside": no conformer of the ensemble; it has no frame. */
+  tone?: "held" | "outside";
 }
 
 export interface SceneInput {
@@ -50,6 +51,7 @@ export interface Figure {
   /** Null where the population is not known. */
   step: DepthStep | null;
   held: boolean;
+  outside: boolean;
   /** Laid over the reference; Å. */
   positions: Float64Array;
   /** Bonds of its own between shown atoms, flat pairs. */
@@ -131,6 +133,7 @@ export function buildScene(
       population: conformer.population,
       step: conformer.population === null ? null : depthStep(conformer.population),
       held: conformer.tone === "held",
+      outside: conformer.tone === "outside",
       positions: place({
         graph,
         anchor: options.anchor ?? conformers[0]!.positions,

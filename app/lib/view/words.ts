@@ -26,9 +26,9 @@ export function sceneWords(scene: Scene, caption: { strong: string; rest: string
   return `${title}. ${named} in atom colours${apart}${others}${beyond}.${changes.join("")}`;
 }
 
-function figureWords({ name, frame, population, held }: Figure): string {
+function figureWords({ name, frame, population, held, outside }: Figure): string {
   const facts = [
-    name === `frame ${frame}` ? null : `frame ${frame}`,
+    outside ? "from outside" : name === `frame ${frame}` ? null : `frame ${frame}`,
     population === null ? null : formatPercent(population, 1),
     held ? "held" : null,
   ].filter((fact) => fact !== null);

@@ -1,13 +1,15 @@
-import type { ShouldRevalidateFunctionArgs } from "react-router";
+import { type ShouldRevalidateFunctionArgs, useActionData } from "react-router";
 import type { OutsideAnswerToForm } from "~/components/outside/add-structure";
 import { CompareSection } from "~/components/outside/compare-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
+import { readOutsideChoice } from "~/lib/outside/choice";
+import { readState } from "~/lib/url-state";
 import { readForm } from "~/routes/read-form.server";
 import { openForm } from "~/services/ensembles/read-multipart.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import { addOutside } from "~/services/outside/add-outside.server";
-import { listOutside } from "~/services/outside/list-outside.server";
+import { loadOutside } from "~/services/outside/load-outside.server";
 import { removeOutside } from "~/services/outside/remove-outside.server";
 import type { Route } from "./+types/compare";
 
@@ -15,11 +17,13 @@ export function meta({ matches }: Route.MetaArgs) {
   return sectionMeta("Against an outside structure", matches);
 }
 
-export async function loader({ params, context }: Route.LoaderArgs) {
+export async function loader({ params, context, url }: Route.LoaderArgs) {
   const actor = context.get(actorContext);
-  return forPage(context.get(requestIdContext), async () => ({
-    structures: await listOutside({ actor, ensembleId: params.id }),
-  }));
+  const { sift: siftId } = readState(url.searchParams);
+  const choice = readOutsideChoice(url.searchParams);
+  return forPage(context.get(requestIdContext), () =>
+    loadOutside({ actor, ensembleId: params.id, siftId, choice }),
+  );
 }
 
 /** A form with a file adds it; one with `intent` removes a structure or brings it back. */
@@ -46,7 +50,9 @@ export async function action({ request, params, context }: Route.ActionArgs) {
   });
 }
 
-/** What is chosen on the page does not concern the list; a structure that is named may be a new one. */
+/** What the server compared; the rest of what is chosen is answered in the browser. */
+const COMPARED = ["outside", "set", "hand", "sift"];
+
 export function shouldRevalidate({
   currentUrl,
   nextUrl,
@@ -55,9 +61,10 @@ export function shouldRevalidate({
 }: ShouldRevalidateFunctionArgs) {
   if (formMethod !== undefined || currentUrl.pathname !== nextUrl.pathname) return defaultShouldRevalidate;
   if (currentUrl.href === nextUrl.href) return defaultShouldRevalidate;
-  return currentUrl.searchParams.get("outside") !== nextUrl.searchParams.get("outside");
+  return COMPARED.some((key) => currentUrl.searchParams.get(key) !== nextUrl.searchParams.get(key));
 }
 
-export default function Compare({ loaderData }: Route.ComponentProps) {
-  return <CompareSection structures={loaderData.structures} />;
+export default function Compare(_: Route.ComponentProps) {
+  // Without script the answer to a form comes with the page.
+  return <CompareSection answered={useActionData<typeof action>()} />;
 }

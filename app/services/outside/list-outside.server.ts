@@ -1,9 +1,8 @@
-import { and, asc, eq, inArray, isNull } from "drizzle-orm";
+import { and, asc, desc, eq, inArray, isNotNull, isNull } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, ensembles, outsideStructures, sources } from "../../db/schema.server.ts";
 import { unpackColumn } from "../../lib/column-data.ts";
 import { ENERGY_UNITS, kcalPer } from "../../lib/units.ts";
-import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { acceptedFrames } from "../ensembles/accepted-frames.server.ts";
 import { type OutsideData, outsideDataSchema } from "./outside-data.ts";
 
@@ -16,11 +15,34 @@ export interface OutsideView {
   data: OutsideData;
   /** Where it carries an energy: kcal/mol above the lowest accepted frame at that level; null where that is not known. */
   strain: { levelId: string; levelName: string; kcal: number } | null;
+  /** Why no strain is known; null where one is. */
+  withoutStrain: string | null;
 }
 
-/** The structures from outside beside an ensemble, oldest first. */
-export async function listOutside(options: { actor: Actor; ensembleId: string }): Promise<OutsideView[]> {
-  const { ensembleId } = await accessEnsemble(options.actor, "read", options.ensembleId);
+export interface DeletedOutsideView {
+  id: string;
+  name: string;
+  deletedAt: string;
+}
+
+/** Structures that were deleted and can be brought back, the last one first. */
+export async function listDeletedOutside(ensembleId: string): Promise<DeletedOutsideView[]> {
+  const rows = await db
+    .select({
+      id: outsideStructures.id,
+      name: outsideStructures.name,
+      deletedAt: outsideStructures.deletedAt,
+    })
+    .from(outsideStructures)
+    .where(and(eq(outsideStructures.ensembleId, ensembleId), isNotNull(outsideStructures.deletedAt)))
+    .orderBy(desc(outsideStructures.deletedAt), asc(outsideStructures.id));
+  return rows.flatMap(({ id, name, deletedAt }) =>
+    deletedAt === null ? [] : [{ id, name, deletedAt: deletedAt.toISOString() }],
+  );
+}
+
+/** The structures from outside beside an ensemble, oldest first; access has been decided before. */
+export async function listOutside(ensembleId: string): Promise<OutsideView[]> {
   const rows = await db
     .select({
       id: outsideStructures.id,
@@ -42,7 +64,7 @@ export async function listOutside(options: { actor: Actor; ensembleId: string })
     sha256: sha?.toString("hex") ?? "",
     createdAt: createdAt.toISOString(),
     data,
-    strain: strainOf(data, lowest),
+    ...strainOf(data, lowest),
   }));
 }
 
@@ -81,10 +103,26 @@ async function lowestEnergies(ensembleId: string, levelIds: string[]): Promise<M
   return found;
 }
 
-function strainOf({ energy }: OutsideData, lowest: ReadonlyMap<string, LowestEnergy>): OutsideView["strain"] {
-  const level = energy === null ? undefined : lowest.get(energy.levelId);
-  if (energy === null || level === undefined) return null;
+function strainOf(
+  { energy, atoms }: OutsideData,
+  lowest: ReadonlyMap<string, LowestEnergy>,
+): Pick<OutsideView, "strain" | "withoutStrain"> {
+  const without = (withoutStrain: string) => ({ strain: null, withoutStrain });
+  if (energy === null) {
+    return without("It carries no energy at a level of this ensemble, so its strain is not known.");
+  }
+  if (atoms !== "all") {
+    return without(
+      "Its energy is not compared: hydrogens are missing or differ, so the number is not that of this molecule.",
+    );
+  }
+  const level = lowest.get(energy.levelId);
+  if (level === undefined) {
+    return without(
+      "It carries an energy at a level that the ensemble no longer has, so its strain is not known.",
+    );
+  }
   // Subtracted in its own unit, converted once.
   const kcal = (energy.value - level.value) * level.kcalPerUnit;
-  return { levelId: energy.levelId, levelName: level.name, kcal };
+  return { strain: { levelId: energy.levelId, levelName: level.name, kcal }, withoutStrain: null };
 }
