@@ -1,9 +1,12 @@
+import { existsSync } from "node:fs";
 import { defineConfig, devices } from "@playwright/test";
 
 // The server of a run gets its port once; worker processes read the configuration again and must find the same.
 process.env.E2E_PORT ||= String(20_000 + Math.floor(Math.random() * 20_000));
 // The log of the server, for the test that looks through it.
 process.env.E2E_LOG ||= `.test/server-${process.env.E2E_PORT}.log`;
+/** The headless build draws the same pages for half the work; what else there is serves as well. */
+const BROWSERS = ["/usr/bin/chromium-headless-shell", "/usr/bin/chromium"];
 const baseURL = `http://127.0.0.1:${process.env.E2E_PORT}`;
 
 export default defineConfig({
@@ -22,9 +25,10 @@ export default defineConfig({
     viewport: { width: 1440, height: 900 },
     browserName: "chromium",
     screenshot: "only-on-failure",
-    trace: "retain-on-failure",
+    // A trace records every step of every test, a tenth of the whole run: E2E_TRACE=retain-on-failure where it is wanted.
+    trace: process.env.E2E_TRACE === "retain-on-failure" ? "retain-on-failure" : "off",
     launchOptions: {
-      executablePath: process.env.CHROMIUM || "/usr/bin/chromium",
+      executablePath: process.env.CHROMIUM || BROWSERS.find((file) => existsSync(file)),
       args: [
         "--no-sandbox",
         "--disable-background-networking",

@@ -5,7 +5,7 @@ import os from "node:os";
 import path from "node:path";
 import { openThrowaway } from "./database.mjs";
 import { buildPlaces, needBuild, TEST_FOLDER } from "./lib/build.mjs";
-import { needProgram } from "./lib/debian.mjs";
+import { preferProgram } from "./lib/debian.mjs";
 import { needPackages } from "./lib/packages.mjs";
 import { loadSettings } from "./lib/prepare.mjs";
 import { endRunning, freePort, ROOT, run, StartError } from "./lib/processes.mjs";
@@ -26,6 +26,12 @@ async function check(name, script, args, env) {
   say(name);
   const code = await run(process.execPath, [script, ...args], { env, allowFailure: true });
   count(code === 0 ? { passed: 1 } : { failed: 1 });
+}
+
+async function checkSources(env) {
+  await check("Types: routes", program("@react-router/dev/bin.js"), ["typegen"], env);
+  await check("Types", program("typescript/bin/tsc"), ["--noEmit"], env);
+  await check("Lint and format", program("@biomejs/biome/bin/biome"), ["check", "."], env);
 }
 
 function readReport(file) {
@@ -87,21 +93,21 @@ async function main() {
   for (const key of ["DATABASE_URL", "APP_ORIGIN", "SESSION_SECRET", "PORT", "SMTP_URL", "NODE_ENV"])
     delete env[key];
   state.folder = mkdtempSync(path.join(os.tmpdir(), "lowlying-test-"));
-  const chromium = await needProgram("chromium", "chromium", say);
-
-  await check("Types: routes", program("@react-router/dev/bin.js"), ["typegen"], env);
-  await check("Types", program("typescript/bin/tsc"), ["--noEmit"], env);
-  await check("Lint and format", program("@biomejs/biome/bin/biome"), ["check", "."], env);
-
+  // Packages first, one at a time: what follows needs them, and none of it the whole machine.
+  const headless = ["chromium-headless-shell", "chromium-headless-shell"];
+  const chromium = await preferProgram(headless, ["chromium", "chromium"], say);
   say("Starting a throw-away database");
   state.database = await openThrowaway(say);
+
   const places = buildPlaces(TEST_FOLDER);
+  // Side by side: each keeps little more than one core busy.
+  const [checked, built] = await Promise.allSettled([checkSources(env), needBuild(places, say)]);
+  for (const { reason } of [checked, built]) if (reason) throw reason;
   Object.assign(env, {
     TEST_DATABASE_URL: state.database.url,
     WORKER_DIRECTORY: places.worker,
     CHROMIUM: chromium,
   });
-  await needBuild(places, say);
   await runVitest(env);
   await runPlaywright(env);
 }

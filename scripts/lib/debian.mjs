@@ -72,3 +72,50 @@ export async function needProgram(program, packageName, say) {
   if (!installed) throw new StartError(`${packageName} was installed, but ${program} is still missing.`);
   return installed;
 }
+
+/**
+ * The better of two programs that do the same, each with its package. Where the second is there already the first is
+ * fetched only if the archive answers soon: a machine without a network must not wait for it.
+ *
+ * @returns full path of the program
+ */
+export async function preferProgram(better, other, say) {
+  const found = findProgram(better[0]);
+  if (found) return found;
+  const ready = findProgram(other[0]);
+  if (ready) return (findProgram("apt-get") && (await fetchSoon(...better, say))) || ready;
+  try {
+    return await needProgram(...better, say);
+  } catch (error) {
+    say(error.message.split("\n", 1)[0]);
+    return needProgram(...other, say);
+  }
+}
+
+/** Full path of the program once its package is installed, or null where that took too long or could not be. */
+async function fetchSoon(program, packageName, say) {
+  say(`Installing Debian's ${packageName} (about a quarter of a minute)`);
+  const log = path.join(ROOT, ".data/log", `apt-${packageName}.log`);
+  const apt = (...args) => {
+    const impatient = ["-o", "Acquire::http::Timeout=10", "-o", "Acquire::Retries=0"];
+    return ["env", "DEBIAN_FRONTEND=noninteractive", "apt-get", ...impatient, ...args];
+  };
+  const install = ["install", "-y", "--no-install-recommends", packageName];
+  const soon = async (...args) => {
+    const [command, rest] = asRoot("timeout", ["60", ...apt(...args)]);
+    return (await run(command, rest, { log, allowFailure: true })) === 0;
+  };
+  try {
+    // Only fetching is cut short, never the work of dpkg.
+    const fetched =
+      (await soon(...install, "--download-only")) ||
+      ((await soon("update")) && (await soon(...install, "--download-only")));
+    if (fetched) {
+      const [command, rest] = asRoot("env", apt(...install, "--no-download").slice(1));
+      await run(command, rest, { log });
+    }
+  } catch (error) {
+    say(error.message.split("\n", 1)[0]);
+  }
+  return findProgram(program);
+}
