@@ -1,5 +1,11 @@
 import { describe, expect, it } from "vitest";
-import { looksLikeLevel, proposedEnergyUnit, whyNoLevel } from "./columns-view.ts";
+import {
+  type ColumnView,
+  groupColumns,
+  looksLikeLevel,
+  proposedEnergyUnit,
+  whyNoLevel,
+} from "./columns-view.ts";
 
 const column = (name: string, unit: string | null = null) => {
   return { name, unit, kind: "property" as const, atom: null, computed: false };
@@ -29,5 +35,18 @@ describe("a property that may be a level", () => {
     expect(not.filter((name) => looksLikeLevel(column(name)))).toEqual([]);
     expect(looksLikeLevel(column("strain", "kJ/mol"))).toBe(true);
     expect(looksLikeLevel(column("nu1", "cm-1"))).toBe(false);
+  });
+});
+
+describe("the list of columns", () => {
+  const of = (name: string, quantity: string | null, atom: number | null) =>
+    ({ ...column(name, "ppm"), quantity, atom, rule: "linear", origin: "the table a.csv" }) as ColumnView;
+
+  it("folds a quantity of many atoms, and nothing else", () => {
+    const shifts = [1, 2, 3, 4, 5].map((atom) => of(`shift C${atom}`, "shift", atom));
+    const charges = [1, 2, 3].map((atom) => of(`charge ${atom}`, "charge", atom));
+    const groups = groupColumns([of("a", null, null), ...shifts.slice(0, 2), ...charges, ...shifts.slice(2)]);
+    expect(groups.map((group) => group.length)).toEqual([1, 5, 1, 1, 1]);
+    expect(groups[1]!.map(({ atom }) => atom)).toEqual([1, 2, 3, 4, 5]);
   });
 });

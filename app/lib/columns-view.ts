@@ -122,3 +122,31 @@ export function looksLikeLevel(column: MaybeLevel): boolean {
   if (unit !== null && ENERGY_UNITS.indexOf(unit) < 5) return true;
   return ENERGY_WORDS.test(column.name);
 }
+
+/** Columns of one quantity over so many atoms stand in one row of the list. */
+const FEWEST_IN_GROUP = 4;
+
+/**
+ * Columns as the page lists them: those of a per-atom quantity that came together as one entry, others each as one.
+ *
+ * @example groupColumns(columns).map((group) => group.length) // [1, 1, 28]
+ */
+export function groupColumns(columns: readonly ColumnView[]): ColumnView[][] {
+  const groups: ColumnView[][] = [];
+  const byKey = new Map<string, ColumnView[]>();
+  for (const column of columns) {
+    const key =
+      column.quantity === null || column.atom === null
+        ? null
+        : JSON.stringify([column.quantity, column.unit, column.rule, column.origin]);
+    const group = key === null ? undefined : byKey.get(key);
+    if (group) {
+      group.push(column);
+      continue;
+    }
+    const made = [column];
+    groups.push(made);
+    if (key !== null) byKey.set(key, made);
+  }
+  return groups.flatMap((group) => (group.length < FEWEST_IN_GROUP ? group.map((one) => [one]) : [group]));
+}

@@ -1,8 +1,8 @@
 import { useEffect, useState } from "react";
 import { symbolOf } from "~/lib/chem/elements";
-import { type FlatDrawing, flatLayout } from "~/lib/workbench/flat-layout";
+import { type FlatDrawing, flatLayout, freeDirection } from "~/lib/workbench/flat-layout";
 
-const BOX = { width: 300, height: 190 };
+const BOX = { width: 300, height: 220, bond: 30, margin: 18 };
 /** A drawing of this size would be a grey patch. */
 const MAX_HEAVY = 60;
 const RING = 8;
@@ -59,7 +59,7 @@ export function AtomDrawing({
   const ringedHeavy = new Set([...ringed].map((atom) => carriers.get(atom) ?? atom));
   const numberedHeavy = new Set([...numbers].map((atom) => carriers.get(atom) ?? atom));
   const labelled = new Set(drawing.labels.map((label) => `${label.x},${label.y}`));
-  const centre = { x: drawing.width / 2, y: drawing.height / 2 };
+  const around = neighbours(drawing, bonds);
   return (
     <svg
       role="img"
@@ -97,8 +97,8 @@ export function AtomDrawing({
         const atom = drawing.atoms[k] ?? 0;
         if (!numberedHeavy.has(atom) && !ringedHeavy.has(atom)) return null;
         const on = ringedHeavy.has(atom);
-        const away = Math.hypot(point.x - centre.x, point.y - centre.y) || 1;
-        const off = labelled.has(`${point.x},${point.y}`) ? 15 : 11;
+        const away = freeDirection(point, around.get(atom) ?? []);
+        const off = labelled.has(`${point.x},${point.y}`) ? 16 : 12;
         return (
           <g key={atom}>
             {on ? (
@@ -112,8 +112,8 @@ export function AtomDrawing({
               />
             ) : null}
             <text
-              x={point.x + (off * (point.x - centre.x)) / away}
-              y={point.y + (off * (point.y - centre.y)) / away + 4}
+              x={point.x + off * away.x}
+              y={point.y + off * away.y + 4}
               textAnchor="middle"
               fill={on ? "var(--color-mark)" : "var(--color-ink-3)"}
               fontWeight={on ? 600 : 400}
@@ -128,6 +128,20 @@ export function AtomDrawing({
       })}
     </svg>
   );
+}
+
+/** Places of the drawn neighbours of each drawn atom. */
+function neighbours({ atoms, points }: Numbered, bonds: readonly number[]) {
+  const places = new Map(atoms.map((atom, k) => [atom, points[k]]));
+  const found = new Map<number, { x: number; y: number }[]>();
+  for (let k = 0; k < bonds.length; k += 2) {
+    const ends = [bonds[k] ?? 0, bonds[k + 1] ?? 0] as const;
+    for (const [here, there] of [ends, [ends[1], ends[0]] as const]) {
+      const place = places.get(there);
+      if (place && places.has(here)) found.set(here, [...(found.get(here) ?? []), place]);
+    }
+  }
+  return found;
 }
 
 /** The atom that carries each hydrogen. */

@@ -10,6 +10,7 @@ import { atomName } from "~/lib/chem/elements";
 import { ABSENT, fixed, formatTemperature, plural, signed } from "~/lib/format";
 import { toCsv } from "~/lib/workbench/tsv";
 import { AtomDrawing } from "./atom-drawing";
+import { MeasuredBlock } from "./measured-block";
 import { anchorOf } from "./property-table";
 import { type Averaged, type AveragedProperty, contributionsTo } from "./use-averages";
 import type { WeighedConformers } from "./use-weighed";
@@ -160,6 +161,7 @@ export function AtomTable({
           </tbody>
         </Table>
       </div>
+      <MeasuredBlock quantity={quantity} list={list} />
     </section>
   );
 }

@@ -9,8 +9,8 @@ import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { showToast } from "~/components/ui/toast";
 import type { ActAnswer } from "~/components/workbench/act-answer";
-import { type ColumnView, ENERGY_KIND_WORDS, whyNoLevel } from "~/lib/columns-view";
-import { formatCount, formatTemperature } from "~/lib/format";
+import { type ColumnView, ENERGY_KIND_WORDS, groupColumns, whyNoLevel } from "~/lib/columns-view";
+import { formatCount, formatTemperature, plural } from "~/lib/format";
 import { ScrollBox } from "./scroll-box";
 import { UseAsLevel, UseAsProperty } from "./use-as-level";
 
@@ -46,46 +46,104 @@ export function ColumnTable({ columns, ensembleId, mayChange }: Props & { column
           </tr>
         </thead>
         <tbody>
-          {columns.map((column) => (
-            <Tr key={column.id}>
-              <Td tall wrap className="min-w-32">
-                <span className="flex items-center gap-2 font-medium break-words">
-                  {column.kind === "energy" ? <LevelMarker ordinal={column.ordinal} /> : null}
-                  {column.name}
-                </span>
-              </Td>
-              <Td>{column.unit ?? ""}</Td>
-              <Td wrap className="min-w-36">
-                {kindWords(column)}
-              </Td>
-              <Td align="right" className="figures">
-                {formatCount(column.count)}
-              </Td>
-              <Td align="right" className="figures">
-                {formatCount(column.missing)}
-              </Td>
-              <Td wrap className="min-w-40 break-words text-ink-2">
-                {column.formula ?? column.origin}
-                {column.geometryLevel ? (
-                  <span className="block">geometry: {column.geometryLevel}</span>
-                ) : null}
-                {column.solvent ? <span className="block">in {column.solvent}</span> : null}
-              </Td>
-              {mayChange ? (
-                <Td wrap className="print:hidden">
-                  <span className="flex flex-wrap gap-x-4 gap-y-1">
-                    <ChangeColumn column={column} ensembleId={ensembleId} />
-                    {whyNoLevel(column) === null && !column.counter ? (
-                      <UseAsLevel column={column} ensembleId={ensembleId} />
-                    ) : null}
-                  </span>
-                </Td>
-              ) : null}
-            </Tr>
-          ))}
+          {groupColumns(columns).map((group) =>
+            group.length === 1 && group[0] ? (
+              <ColumnRow key={group[0].id} column={group[0]} {...{ ensembleId, mayChange }} />
+            ) : (
+              <GroupRows key={group[0]?.id} group={group} {...{ ensembleId, mayChange }} />
+            ),
+          )}
         </tbody>
       </Table>
     </ScrollBox>
+  );
+}
+
+/** A quantity of many atoms: one row that opens to one an atom. */
+function GroupRows({ group, ensembleId, mayChange }: Props & { group: readonly ColumnView[] }) {
+  const [open, setOpen] = useState(false);
+  const [first] = group;
+  if (!first) return null;
+  const counts = group.map(({ count }) => count);
+  const missing = group.map(({ missing: none }) => none);
+  const range = (values: readonly number[]) => {
+    const [low, high] = [Math.min(...values), Math.max(...values)];
+    return low === high ? formatCount(low) : `${formatCount(low)} to ${formatCount(high)}`;
+  };
+  return (
+    <>
+      <Tr>
+        <Td tall wrap className="min-w-32 font-medium break-words">
+          {first.quantity}
+          <span className="block text-xs font-normal text-ink-3">{plural(group.length, "column")}</span>
+        </Td>
+        <Td>{first.unit ?? ""}</Td>
+        <Td wrap className="min-w-36">
+          property, {first.rule ?? "linear"}, {plural(group.length, "atom")}
+        </Td>
+        <Td align="right" className="figures">
+          {range(counts)}
+        </Td>
+        <Td align="right" className="figures">
+          {range(missing)}
+        </Td>
+        <Td wrap className="min-w-40 break-words text-ink-2">
+          {first.origin}
+        </Td>
+        {mayChange ? (
+          <Td className="print:hidden">
+            <TextButton
+              aria-expanded={open}
+              aria-label={`${open ? "Fold" : "Show"} the atoms of ${first.quantity}`}
+              onClick={() => setOpen(!open)}
+            >
+              {open ? "Fold" : "Show atoms"}
+            </TextButton>
+          </Td>
+        ) : null}
+      </Tr>
+      {open
+        ? group.map((column) => <ColumnRow key={column.id} column={column} {...{ ensembleId, mayChange }} />)
+        : null}
+    </>
+  );
+}
+
+function ColumnRow({ column, ensembleId, mayChange }: Props & { column: ColumnView }) {
+  return (
+    <Tr>
+      <Td tall wrap className="min-w-32">
+        <span className="flex items-center gap-2 font-medium break-words">
+          {column.kind === "energy" ? <LevelMarker ordinal={column.ordinal} /> : null}
+          {column.name}
+        </span>
+      </Td>
+      <Td>{column.unit ?? ""}</Td>
+      <Td wrap className="min-w-36">
+        {kindWords(column)}
+      </Td>
+      <Td align="right" className="figures">
+        {formatCount(column.count)}
+      </Td>
+      <Td align="right" className="figures">
+        {formatCount(column.missing)}
+      </Td>
+      <Td wrap className="min-w-40 break-words text-ink-2">
+        {column.formula ?? column.origin}
+        {column.geometryLevel ? <span className="block">geometry: {column.geometryLevel}</span> : null}
+        {column.solvent ? <span className="block">in {column.solvent}</span> : null}
+      </Td>
+      {mayChange ? (
+        <Td wrap className="print:hidden">
+          <span className="grid justify-items-start gap-1 whitespace-nowrap">
+            <ChangeColumn column={column} ensembleId={ensembleId} />
+            {whyNoLevel(column) === null && !column.counter ? (
+              <UseAsLevel column={column} ensembleId={ensembleId} />
+            ) : null}
+          </span>
+        </Td>
+      ) : null}
+    </Tr>
   );
 }
 

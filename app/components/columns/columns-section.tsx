@@ -35,13 +35,13 @@ export function ColumnsSection({ view }: { view: ColumnsView }) {
           ? "The frames have neither energies nor properties yet."
           : `The frames have ${plural(levels, "level")} and ${plural(properties, "property", "properties")}.`}
       </Finding>
-      {columns.length > 0 ? (
-        <ColumnTable columns={columns} ensembleId={ensemble.id} mayChange={ensemble.mayCompute} />
-      ) : null}
       {ensemble.mayCompute && maybe.length > 0 ? (
         <Note className="mt-4">
           {`${maybe.map(({ name }) => name).join(", ")}: ${maybe.length === 1 ? "a property that looks like energies" : "properties that look like energies"}. “Use as a level” makes ${maybe.length === 1 ? "it a level" : "them levels"} to compare and weigh with, once you say the unit.`}
         </Note>
+      ) : null}
+      {columns.length > 0 ? (
+        <ColumnTable columns={columns} ensembleId={ensemble.id} mayChange={ensemble.mayCompute} />
       ) : null}
       {ensemble.mayCompute ? (
         <>

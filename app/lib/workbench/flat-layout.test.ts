@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { type FlatAtom, type FlatBond, flatLayout, innerSide } from "./flat-layout.ts";
+import { type FlatAtom, type FlatBond, flatLayout, freeDirection, innerSide } from "./flat-layout.ts";
 
 const atom = (element: number, x: number, y: number, hydrogens = 0, charge = 0): FlatAtom => ({
   element,
@@ -91,5 +91,21 @@ describe("flat drawing", () => {
       { from: 0, to: 3 },
     ];
     expect(innerSide(carbonyl, around, 0)).toBe(0);
+  });
+});
+
+describe("the room for a number beside an atom", () => {
+  test("lies opposite a lone bond, and in the widest gap between several", () => {
+    const at = { x: 1, y: 1 };
+    const alone = freeDirection(at, [{ x: 2, y: 1 }]);
+    expect(alone.x).toBeCloseTo(-1, 12);
+    expect(alone.y).toBeCloseTo(0, 12);
+    // Two bonds of a ring, 120 degrees apart: outside it.
+    const ring = freeDirection(at, [
+      { x: 1 + Math.cos(Math.PI / 3), y: 1 + Math.sin(Math.PI / 3) },
+      { x: 1 + Math.cos(Math.PI / 3), y: 1 - Math.sin(Math.PI / 3) },
+    ]);
+    expect(ring.x).toBeCloseTo(-1, 12);
+    expect(freeDirection(at, [])).toEqual({ x: 0, y: -1 });
   });
 });

@@ -53,6 +53,16 @@ const MARGIN = 10;
 /** Drawings are not blown up beyond this bond length. */
 const BOND = 20;
 
+/** A box in pixels, and how far a drawing in it may grow. */
+export interface FlatBox {
+  width: number;
+  height: number;
+  /** Longest bond, 20 px where left out. */
+  bond?: number;
+  /** Room round the atoms, 10 px where left out. */
+  margin?: number;
+}
+
 /**
  * Fits atoms and bonds into a box: carbon stays unlabelled where it has a neighbour, bonds stop short of letters,
  * second lines lie on the side of the ring or between equal neighbours.
@@ -62,7 +72,7 @@ const BOND = 20;
 export function flatLayout(
   atoms: readonly FlatAtom[],
   bonds: readonly FlatBond[],
-  box: { width: number; height: number },
+  box: FlatBox,
   symbolOf: (element: number) => string,
 ): FlatDrawing {
   const placed = fitInto(atoms, bonds, box);
@@ -90,11 +100,8 @@ interface Point {
   y: number;
 }
 
-function fitInto(
-  atoms: readonly FlatAtom[],
-  bonds: readonly FlatBond[],
-  box: { width: number; height: number },
-) {
+function fitInto(atoms: readonly FlatAtom[], bonds: readonly FlatBond[], box: FlatBox) {
+  const margin = box.margin ?? MARGIN;
   const xs = atoms.map((atom) => atom.x);
   const ys = atoms.map((atom) => atom.y);
   const left = Math.min(...xs);
@@ -106,15 +113,15 @@ function fitInto(
   );
   const bondLength = lengths.length > 0 ? lengths.reduce((sum, l) => sum + l, 0) / lengths.length : 1;
   const scale = Math.min(
-    BOND / Math.max(1e-6, bondLength),
-    (box.width - 2 * MARGIN) / spanX,
-    (box.height - 2 * MARGIN) / spanY,
+    (box.bond ?? BOND) / Math.max(1e-6, bondLength),
+    (box.width - 2 * margin) / spanX,
+    (box.height - 2 * margin) / spanY,
   );
   const points: Point[] = atoms.map((atom) => ({
-    x: MARGIN + (atom.x - left) * scale,
-    y: MARGIN + (atom.y - top) * scale,
+    x: margin + (atom.x - left) * scale,
+    y: margin + (atom.y - top) * scale,
   }));
-  return { points, width: 2 * MARGIN + spanX * scale, height: 2 * MARGIN + spanY * scale };
+  return { points, width: 2 * margin + spanX * scale, height: 2 * margin + spanY * scale };
 }
 
 function labelOf(
@@ -235,4 +242,24 @@ export function innerSide(
   }
   if (ends !== 3) return 0;
   return sum > 0 ? 1 : sum < 0 ? -1 : 0;
+}
+
+/**
+ * The direction from an atom in which most room is left between its bonds: where its number stands.
+ *
+ * @param around places of its neighbours
+ * @returns a vector of length 1; upwards for an atom without neighbours
+ * @example freeDirection({ x: 0, y: 0 }, [{ x: 1, y: 0 }]) // { x: -1, y: 0 }
+ */
+export function freeDirection(at: Point, around: readonly Point[]): Point {
+  const angles = around.map((other) => Math.atan2(other.y - at.y, other.x - at.x)).sort((a, b) => a - b);
+  const first = angles[0];
+  if (first === undefined) return { x: 0, y: -1 };
+  let widest = { from: 0, width: -1 };
+  for (const [k, from] of angles.entries()) {
+    const width = (angles[k + 1] ?? first + 2 * Math.PI) - from;
+    if (width > widest.width + 1e-9) widest = { from, width };
+  }
+  const middle = widest.from + widest.width / 2;
+  return { x: Math.cos(middle), y: Math.sin(middle) };
 }

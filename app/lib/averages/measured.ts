@@ -1,0 +1,194 @@
+import { type Agreement, againstMeasured, fitShieldings, type Line, shiftOf } from "./shielding-fit.ts";
+
+/** Measured values and scaling of one per-atom quantity, as the address holds them. */
+export interface MeasuredState {
+  quantity: string;
+  /** What was said of the numbers; null leaves it to their name. */
+  are: "shieldings" | "shifts" | null;
+  /** By the first atom of a group, from 1. */
+  values: ReadonlyMap<number, number>;
+  /** Typed in, by atomic number; a nucleus that is absent is fitted. */
+  scaling: ReadonlyMap<number, Omit<Line, "n">>;
+}
+
+const MOST_MEASURED = 400;
+const NUMBER = /^-?\d{1,6}(\.\d{1,6})?$/;
+
+function numberOf(text: string | undefined): number | null {
+  return text !== undefined && NUMBER.test(text) ? Number(text) : null;
+}
+
+/**
+ * Reads what one parameter of an address says: "shielding~1:170.2~4:30.1~z6:-1.05:186.2~shieldings"; nonsense counts as absent.
+ *
+ * @example readMeasured("shift~1:77.3").values.get(1) // 77.3
+ */
+export function readMeasured(text: string): MeasuredState {
+  const [quantity = "", ...parts] = text.split("~");
+  const values = new Map<number, number>();
+  const scaling = new Map<number, Omit<Line, "n">>();
+  let are: MeasuredState["are"] = null;
+  for (const part of parts.slice(0, MOST_MEASURED)) {
+    if (part === "shieldings" || part === "shifts") are = part;
+    const [key = "", first, second] = part.split(":");
+    const [a, b] = [numberOf(first), numberOf(second)];
+    const z = /^z(\d{1,3})$/.exec(key)?.[1];
+    if (z !== undefined && a !== null && a !== 0 && b !== null) {
+      scaling.set(Number(z), { slope: a, intercept: b });
+    } else if (/^\d{1,5}$/.test(key) && a !== null) values.set(Number(key), a);
+  }
+  return { quantity: decode(quantity), are, values, scaling };
+}
+
+/** Writes it; null where nothing is measured or typed in. */
+export function writeMeasured({ quantity, are, values, scaling }: MeasuredState): string | null {
+  const parts = [
+    ...[...values].sort(([a], [b]) => a - b).map(([atom, value]) => `${atom}:${plain(value)}`),
+    ...[...scaling]
+      .sort(([a], [b]) => a - b)
+      .map(([z, { slope, intercept }]) => `z${z}:${plain(slope)}:${plain(intercept)}`),
+    ...(are === null ? [] : [are]),
+  ];
+  return parts.length === 0 ? null : [encode(quantity), ...parts].join("~");
+}
+
+/** The parameter of an address that holds measured values, once a quantity. */
+export const MEASURED_PARAM = "meas";
+
+/** What an address says of a quantity. */
+export function measuredIn(params: URLSearchParams, quantity: string): MeasuredState {
+  const own = params.getAll(MEASURED_PARAM).map(readMeasured);
+  return (
+    own.find((state) => state.quantity === quantity) ?? {
+      quantity,
+      are: null,
+      values: new Map(),
+      scaling: new Map(),
+    }
+  );
+}
+
+/** The parameters with this in the place of what they said of the quantity. */
+export function withMeasured(params: URLSearchParams, state: MeasuredState): URLSearchParams {
+  const next = new URLSearchParams(params);
+  const others = params
+    .getAll(MEASURED_PARAM)
+    .filter((text) => readMeasured(text).quantity !== state.quantity);
+  next.delete(MEASURED_PARAM);
+  for (const text of others) next.append(MEASURED_PARAM, text);
+  const own = writeMeasured(state);
+  if (own !== null) next.append(MEASURED_PARAM, own);
+  return next;
+}
+
+const plain = (value: number) => String(Number(value.toFixed(6)));
+const encode = (name: string) => name.replaceAll("%", "%25").replaceAll("~", "%7E");
+const decode = (name: string) => name.replaceAll("%7E", "~").replaceAll("%25", "%");
+
+/**
+ * Measured values out of pasted lines: an atom ("C4", "4") or several of a group, then the value.
+ *
+ * @param groups first atom (from 1) of the group of each atom
+ * @returns values by the first atom of their group, and the lines that say no such thing
+ * @example readPasted("C1 77.3\nC4\t20.1", groups).values // { 1 => 77.3, 4 => 20.1 }
+ */
+export function readPasted(
+  text: string,
+  groups: ReadonlyMap<number, number>,
+): { values: Map<number, number>; unread: string[] } {
+  const values = new Map<number, number>();
+  const unread: string[] = [];
+  for (const line of text.split(/\r?\n/)) {
+    if (line.trim() === "") continue;
+    // A comma between digits may be a decimal one: it separates nothing, and such a line is not read.
+    const parts = line.split(/[\s;=:]+/).flatMap((part) => part.replace(/,$/, "") || []);
+    const value = numberOf(parts.at(-1)?.replace("\u2212", "-"));
+    const atom = Number(/^[A-Za-z]{0,2}_?(\d{1,5})$/.exec(parts[0] ?? "")?.[1] ?? Number.NaN);
+    const group = groups.get(atom);
+    if (parts.length < 2 || value === null || group === undefined) unread.push(line.trim());
+    else values.set(group, value);
+  }
+  return { values, unread };
+}
+
+/** A group of equivalent atoms with its average, and what was measured. */
+export interface MeasuredGroup {
+  /** First atom, from 1. */
+  atom: number;
+  /** Atomic number. */
+  z: number;
+  average: number | null;
+  /** Standard deviation that the error of the level makes of the average; null where it is not known. */
+  error: number | null;
+  measured: number | null;
+}
+
+/** One group beside its measured value, both of one kind. */
+export interface SetBeside extends MeasuredGroup {
+  /** The average, or the shift that its shielding scales to. */
+  computed: number | null;
+  computedError: number | null;
+  difference: number | null;
+}
+
+export interface Nucleus {
+  z: number;
+  groups: SetBeside[];
+  /** Of shieldings: the line in use; null where there is none yet. */
+  line: (Line & { from: "fitted" | "typed" }) | null;
+  agreement: Agreement | null;
+  /** Atom (first of its group, from 1) with the largest deviation. */
+  farthest: number | null;
+}
+
+/**
+ * Averages beside measured values, nucleus by nucleus; shieldings are scaled to shifts by the line typed in, else by the
+ * one fitted to the measured values themselves.
+ *
+ * @param shieldings true where the averages are shieldings and the measured values shifts
+ * @example setBeside(groups, { shieldings: true, scaling: new Map() })[0]?.line?.slope // -1.02
+ */
+export function setBeside(
+  groups: readonly MeasuredGroup[],
+  options: { shieldings: boolean; scaling: ReadonlyMap<number, Omit<Line, "n">> },
+): Nucleus[] {
+  const nuclei = [...new Set(groups.map(({ z }) => z))].sort((a, b) => a - b);
+  return nuclei.map((z) => {
+    const own = groups.filter((group) => group.z === z);
+    const known = own.flatMap(({ average, measured }) =>
+      average === null || measured === null ? [] : [{ average, measured }],
+    );
+    const line = options.shieldings ? lineOf(known, options.scaling.get(z)) : null;
+    const beside = own.map((group): SetBeside => {
+      const { average, error, measured } = group;
+      const open = average === null || (options.shieldings && line === null);
+      const computed = open ? null : line === null ? average : shiftOf(average, line);
+      return {
+        ...group,
+        computed,
+        computedError: computed === null || error === null ? null : error / Math.abs(line?.slope ?? 1),
+        difference: computed === null || measured === null ? null : computed - measured,
+      };
+    });
+    const pairs = beside.flatMap(({ atom, computed, measured }) =>
+      computed === null || measured === null ? [] : [{ atom, computed, measured }],
+    );
+    const agreement = againstMeasured(
+      pairs.map(({ computed }) => computed),
+      pairs.map(({ measured }) => measured),
+    );
+    return { z, groups: beside, line, agreement, farthest: pairs[agreement?.maxPlace ?? -1]?.atom ?? null };
+  });
+}
+
+function lineOf(
+  known: readonly { average: number; measured: number }[],
+  typed: Omit<Line, "n"> | undefined,
+): Nucleus["line"] {
+  if (typed !== undefined) return { ...typed, n: 0, from: "typed" };
+  const fitted = fitShieldings(
+    known.map(({ average }) => average),
+    known.map(({ measured }) => measured),
+  );
+  return fitted === null || fitted.slope === 0 ? null : { ...fitted, from: "fitted" };
+}
