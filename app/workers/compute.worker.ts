@@ -1,9 +1,11 @@
 import { PairMatrixWork, packedLength } from "../lib/align/pair-matrix.ts";
 import { makePlan } from "../lib/align/plan.ts";
+import { averageErrorsOf } from "../lib/averages/property-set.ts";
 import { matchFrames } from "../lib/levels/match-frames.ts";
 import { runSift, SiftCancelled } from "../lib/recipe/run.ts";
 import { makeGraph } from "../lib/structure.ts";
 import {
+  type AveragesAnswer,
   type ComputeTask,
   MATRIX_COUNTERS,
   type MatchAnswer,
@@ -18,8 +20,13 @@ import {
 const PROGRESS_INTERVAL_MS = 100;
 
 /** Thread entry: one task in, one answer out. It computes and knows neither database nor network. */
-export default function compute(task: ComputeTask): SiftAnswer | MatchAnswer | MatrixAnswer {
+export default function compute(
+  task: ComputeTask,
+): SiftAnswer | MatchAnswer | MatrixAnswer | AveragesAnswer {
   if (task.kind === "match") return match(task);
+  if (task.kind === "averages") {
+    return { kind: "averaged", ...averageErrorsOf(task.moments, task.weighed, task.error) };
+  }
   try {
     return task.kind === "sift" ? sift(task) : matrix(task);
   } catch (error) {

@@ -1,4 +1,6 @@
 import type { MessagePort } from "node:worker_threads";
+import type { Moments } from "../lib/averages/average.ts";
+import type { AverageError } from "../lib/averages/uncertainty.ts";
 import type { FrameMatches } from "../lib/levels/match-frames.ts";
 import type { SiftRecipe } from "../lib/recipe/recipe.ts";
 import type { SiftResult } from "../lib/recipe/result.ts";
@@ -41,6 +43,16 @@ export interface MatchTask {
 
 export type MatchAnswer = { kind: "matched"; matches: FrameMatches };
 
+/** What the error of a level makes of averages; the arrays are copied. */
+export interface AveragesTask {
+  kind: "averages";
+  moments: readonly Moments[];
+  weighed: { energies: Float64Array; weights: Float64Array; temperatureK: number };
+  error: { sigma: number; seed: number };
+}
+
+export type AveragesAnswer = { kind: "averaged"; errors: (AverageError | null)[]; draws: number };
+
 /** One thread's share of a pair matrix: all threads take tiles from one counter and write into one buffer. */
 export interface MatrixTask {
   kind: "matrix";
@@ -66,7 +78,7 @@ export interface MatrixTask {
 /** Places in `MatrixTask.counters`: the next tile, pairs done, pairs whose work bound was met. */
 export const MATRIX_COUNTERS = { nextTile: 0, pairs: 1, inexact: 2 } as const;
 
-export type ComputeTask = SiftTask | MatchTask | MatrixTask;
+export type ComputeTask = SiftTask | MatchTask | MatrixTask | AveragesTask;
 
 /** Sent through the task's port, at most ten times a second. */
 export interface ProgressMessage {

@@ -17,6 +17,7 @@ import { addObservable, observableRequestSchema } from "~/services/averages/obse
 import { recomputeObservables } from "~/services/averages/recompute-observables.server";
 import { setRule } from "~/services/averages/set-rule.server";
 import { lockEnsemble, storeColumn } from "~/services/columns/store-column.server";
+import { computeAverages } from "~/services/jobs/pool.server";
 import { makeMember } from "../factories/people";
 import { fixtures, readReference } from "../factories/reference";
 import { makeLab, reference, sifted, takenIn, withJobs } from "../factories/upload";
@@ -281,6 +282,20 @@ describe("what the pages show", () => {
       expect(row.average).toBe(average.value === null ? "" : String(average.value));
       expect(row.uncertainty).toBe(average.value === null ? "" : String(errors[k]!.sd));
     }
+  });
+
+  it("draws the same digits in a thread, where large sets are drawn", async () => {
+    const view = await loadAverages({ actor: analyst, ensembleId: ensemble.id, siftId: sift.id });
+    const kept = sift.result!.kept;
+    const moments = view.properties.map((property) => propertyMoments(property, kept, false));
+    const weighed = {
+      energies: Float64Array.from(kept, (conformer) => conformer.relativeEnergy!),
+      weights: Float64Array.from(distinctPopulations(kept, "electronic", 310)!.weights.values),
+      temperatureK: 310,
+    };
+    const error = { sigma: 0.5, seed: DEFAULT_SEED };
+    const { errors, draws } = await computeAverages({ moments, weighed, error });
+    expect({ errors, draws }).toEqual(averageErrorsOf(moments, weighed, error));
   });
 
   it("says which frames each search brought", async () => {

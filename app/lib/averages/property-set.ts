@@ -49,6 +49,11 @@ export function averageDraws(conformers: number, quantities: number): number {
   return Math.min(DRAWS, Math.max(FEWEST, fitting));
 }
 
+/** Multiplications that the draws for so many quantities over so many conformers take. */
+export function drawWork(conformers: number, quantities: number): number {
+  return averageDraws(conformers, quantities) * conformers * (quantities + 10);
+}
+
 /** The error of the energies as draws of a set: everything but the draws themselves. */
 export function averageErrorsOf(
   moments: readonly Moments[],

@@ -1,15 +1,30 @@
 import { db } from "../../db/client.server.ts";
 import { averageOf } from "../../lib/averages/average.ts";
 import { averagesCsv } from "../../lib/averages/averages-csv.ts";
-import { averageErrorsOf, averagesRows, propertyMoments } from "../../lib/averages/property-set.ts";
+import { averageErrorsOf, averagesRows, drawWork, propertyMoments } from "../../lib/averages/property-set.ts";
 import { DEFAULT_SEED } from "../../lib/averages/uncertainty.ts";
 import { STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
 import { type Actor, accessSift } from "../auth/access.server.ts";
 import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
+import { computeAverages } from "../jobs/pool.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { findSift } from "../sifts/find-sift.server.ts";
 import { findProperties, propertyValues } from "./property-set.server.ts";
 import { mirrorMerged, weighedSet } from "./weighed-set.server.ts";
+
+/** More multiplications than these (about 0.1 s) are done in a thread: others ask meanwhile. */
+const DRAWN_HERE = 4e7;
+
+/** What the error of the level makes of the averages; the same digits here and in a thread. */
+async function errorsOf(...input: Parameters<typeof averageErrorsOf>) {
+  const [moments, weighed, error] = input;
+  if (drawWork(weighed.energies.length, moments.length) <= DRAWN_HERE) {
+    return averageErrorsOf(moments, weighed, error).errors;
+  }
+  const { energies, weights, temperatureK } = weighed;
+  const task = { energies: Float64Array.from(energies), weights: Float64Array.from(weights), temperatureK };
+  return (await computeAverages({ moments, weighed: task, error })).errors;
+}
 
 /**
  * Boltzmann-weighted averages of all property columns of an ensemble over a distinct set, as `averages.csv`; members'
@@ -39,15 +54,15 @@ export async function exportAverages(options: {
   const errors =
     options.sigma === undefined || moments.length === 0
       ? null
-      : averageErrorsOf(
+      : await errorsOf(
           moments,
           {
-            energies: conformers.map((conformer) => conformer.relativeEnergy ?? 0),
-            weights: weighed.weights.values,
+            energies: Float64Array.from(conformers, (conformer) => conformer.relativeEnergy ?? 0),
+            weights: Float64Array.from(weighed.weights.values),
             temperatureK,
           },
           { sigma: options.sigma, seed: DEFAULT_SEED },
-        ).errors;
+        );
   if (grant.role !== "guest") {
     await writeEntry(db, grant, grant, {
       type: "export",

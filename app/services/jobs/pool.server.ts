@@ -6,6 +6,8 @@ import { MessageChannel, type MessagePort } from "node:worker_threads";
 import { Piscina } from "piscina";
 import { env } from "../../env.server.ts";
 import {
+  type AveragesAnswer,
+  type AveragesTask,
   type MatchAnswer,
   type MatchTask,
   type MatrixAnswer,
@@ -125,6 +127,19 @@ export async function computeMatch(task: Omit<MatchTask, "kind">): Promise<Match
   try {
     const answer: MatchAnswer = await pool().run(full, { transferList: matchBuffers(full) });
     return answer.matches;
+  } catch (error) {
+    throw asLost(error);
+  }
+}
+
+/**
+ * What the error of a level makes of averages, in a thread.
+ *
+ * @throws WorkerLost when the thread ended
+ */
+export async function computeAverages(task: Omit<AveragesTask, "kind">): Promise<AveragesAnswer> {
+  try {
+    return await pool().run({ ...task, kind: "averages" } satisfies AveragesTask);
   } catch (error) {
     throw asLost(error);
   }
