@@ -389,7 +389,7 @@ export class XyzReader {
     const chosen = choice === "label" || choice === "element" ? choice : null;
     this.#capitals ??= chosen ?? proposeCapitals(capitals, elements, positions);
     if (choice === AS_PROPOSED) {
-      builder.open.set("capitals", openCapitals(capitals, this.#capitals, builder.line + 2 + first.atom));
+      builder.noteOpen(openCapitals(capitals, this.#capitals, builder.line + 2 + first.atom));
     }
     if (this.#capitals === "label") return;
     for (const { atom, two } of capitals) {

@@ -5,6 +5,9 @@ export const MAX_LINE_BYTES = 1024 * 1024;
 /** Larger pieces are cut before they are copied in, so that the buffer stays small whatever the chunks. */
 export const PIECE_BYTES = 128 * 1024;
 
+/** Bytes behind the end that may be read. */
+const MARGIN = 4;
+
 const LF = 10;
 const CR = 13;
 
@@ -19,8 +22,9 @@ const CR = 13;
  * while (lines.next()) use(lines.bytes, lines.from, lines.to, lines.line);
  */
 export class LineBuffer {
-  /** Always one zero byte behind `end`: scans stop there without a bounds check. */
+  /** Always one zero byte behind `end`, and four in all: scans stop there without a bounds check. */
   bytes: Uint8Array = new Uint8Array(2 * PIECE_BYTES);
+  view = new DataView(this.bytes.buffer);
   /** Start of what is not taken yet, and its end. */
   at = 0;
   end = 0;
@@ -45,8 +49,8 @@ export class LineBuffer {
   /** Adds a piece; everything complete should have been taken before. */
   append(piece: Uint8Array): void {
     const kept = this.end - this.at;
-    const need = kept + piece.length + 1;
-    if (this.end + piece.length + 1 > this.bytes.length) this.#makeRoom(kept, need);
+    const need = kept + piece.length + MARGIN;
+    if (this.end + piece.length + MARGIN > this.bytes.length) this.#makeRoom(kept, need);
     this.bytes.set(piece, this.end);
     this.end += piece.length;
     this.bytes[this.end] = 0;
@@ -124,6 +128,7 @@ export class LineBuffer {
       const larger = new Uint8Array(2 * need);
       larger.set(this.bytes.subarray(this.at, this.end));
       this.bytes = larger;
+      this.view = new DataView(larger.buffer);
     }
     this.#scanned -= shift;
     this.at = 0;

@@ -21,6 +21,16 @@ const NOTE_WORDS = /^(?:angstroms?|ångstr[öo]ms?|å|bohrs?|au|a\.u\.|atoms?)$/
  * @example readCountLine("12 angstrom", false) // { count: 12, text: "12", note: "angstrom" }
  */
 export function readCountLine(line: string, anyNote: boolean): CountLine | null {
+  if (last !== null && line === last.line && anyNote === last.anyNote) return last.count;
+  const count = parseCountLine(line, anyNote);
+  if (count !== null) last = { line, anyNote, count };
+  return count;
+}
+
+/** The count line read last: all frames of a file have the same. */
+let last: { readonly line: string; readonly anyNote: boolean; readonly count: CountLine } | null = null;
+
+function parseCountLine(line: string, anyNote: boolean): CountLine | null {
   const fields = splitFields(plainBlanksAndMinus(line.replace(/^\ufeff/, "")));
   const text = fields[0]?.text ?? "";
   if (!/^\+?\d+$/.test(text)) return null;

@@ -30,8 +30,7 @@ export function finishFrame(builder: FrameBuilder, place: FramePlace): XyzFrame 
   const fault = builder.fault ?? place.fault ?? checkWhole(builder, cell);
   const sound = fault === null;
   const label = labelOf(builder);
-  const remarks = collectRemarks(builder, place, label, cell);
-  return {
+  const frame: XyzFrame = {
     number: place.number,
     file: place.file,
     line: builder.line,
@@ -41,8 +40,8 @@ export function finishFrame(builder: FrameBuilder, place: FramePlace): XyzFrame 
     extended: builder.extended,
     keys: builder.keys,
     label,
-    charge: wholeNumber(builder.keys, ["charge", "total_charge", "net_charge"]),
-    multiplicity: wholeNumber(builder.keys, ["multiplicity", "spin_multiplicity", "mult"]),
+    charge: wholeNumber(builder.keys, CHARGE_KEYS),
+    multiplicity: wholeNumber(builder.keys, MULTIPLICITY_KEYS),
     elements: sound ? place.elements : new Uint8Array(0),
     isotopes: sound ? builder.isotopes : null,
     labels: sound ? builder.labels : null,
@@ -50,23 +49,20 @@ export function finishFrame(builder: FrameBuilder, place: FramePlace): XyzFrame 
     extra: builder.extraColumns(),
     note: noteOf(builder, place),
     problem: fault && problemOf(fault, place),
-    ...(sound ? openOf(builder) : {}),
-    remarks: sound ? remarks.map((remark) => ({ ...remark, ...severityAndPlace(place) })) : [],
+    remarks: sound ? collectRemarks(builder, place, label, cell) : NO_REMARKS,
   };
+  return sound && builder.open.size > 0 ? { ...frame, ...openOf(builder) } : frame;
 }
+
+const NO_REMARKS: readonly IntakeMessage[] = [];
 
 /** What is still to be asked: what was answered is read as it was. */
 function openOf({ open, choices }: FrameBuilder): Pick<XyzFrame, "open" | "decimalCommas"> {
-  if (open.size === 0) return {};
   const asked = [...open.values()].filter(({ ask }) => choices[ask] === AS_PROPOSED);
   return {
     ...(asked.length === 0 ? {} : { open: asked }),
     ...(open.has("decimal-comma") ? { decimalCommas: true } : {}),
   };
-}
-
-function severityAndPlace(place: FramePlace) {
-  return { severity: "remark" as const, file: place.file, frame: place.number };
 }
 
 function problemOf(fault: BuilderFault, place: FramePlace): FrameProblem {
@@ -76,22 +72,25 @@ function problemOf(fault: BuilderFault, place: FramePlace): FrameProblem {
 }
 
 function noteOf(builder: FrameBuilder, place: FramePlace): string | null {
+  if (builder.countLine.note === null && place.noteLines === null) return null;
   const parts = [builder.countLine.note, place.noteLines?.text].filter((part) => part != null);
-  return parts.length === 0 ? null : parts.join("\n").slice(0, NOTE_LENGTH);
+  return parts.join("\n").slice(0, NOTE_LENGTH);
 }
 
 /** The key `name`, else `label`; in plain text also as `name: ...`. */
 function labelOf(builder: FrameBuilder): string | null {
-  for (const key of ["name", "label"]) {
-    const text = builder.keys.get(key)?.text.trim();
-    if (text) return text;
-  }
-  if (builder.extended) return null;
-  const plain = /(?:^|\s)(?:name|label):\s*("[^"]*"|\S+)/.exec(builder.comment ?? "")?.[1];
+  const text = builder.keys.get("name")?.text.trim() || builder.keys.get("label")?.text.trim();
+  if (text) return text;
+  if (builder.extended || !builder.comment?.includes(":")) return null;
+  const plain = /(?:^|\s)(?:name|label):\s*("[^"]*"|\S+)/.exec(builder.comment)?.[1];
   return plain?.replace(/^"|"$/g, "").trim() || null;
 }
 
+const CHARGE_KEYS = ["charge", "total_charge", "net_charge"];
+const MULTIPLICITY_KEYS = ["multiplicity", "spin_multiplicity", "mult"];
+
 function wholeNumber(keys: ReadonlyMap<string, ExtendedEntry>, names: readonly string[]): number | null {
+  if (keys.size === 0) return null;
   for (const [key, entry] of keys) {
     if (!names.includes(key.toLowerCase())) continue;
     const value = typeof entry.value === "number" ? entry.value : Number.NaN;
@@ -150,13 +149,18 @@ function checkWhole(builder: FrameBuilder, cell: Cell | null): BuilderFault | nu
 /** The word by itself: `e*bohr` and `hartree/bohr` are units of something else. */
 const NAMES_BOHR = /(?<![\w*·/^-])bohrs?(?![\w*·/^-])/i;
 
+function namesBohr(text: string | null): boolean {
+  // Most comments have no such letter, and one letter is found faster than a word.
+  return text !== null && (text.includes("h") || text.includes("H")) && NAMES_BOHR.test(text);
+}
+
 function checkUnit(builder: FrameBuilder): BuilderFault | null {
-  const word = [builder.countLine.note ?? "", builder.comment ?? ""].some((text) => NAMES_BOHR.test(text));
+  const word = namesBohr(builder.countLine.note) || namesBohr(builder.comment);
   const looks = looksLikeBohr(builder.elements, builder.positions);
   if (!word && !looks) return null;
   const read = readLengths(looks, builder.choices, builder.positions, builder.line);
   if (read.bohr) fromBohr(builder.positions);
-  if (read.open) builder.open.set("lengths", read.open);
+  if (read.open) builder.noteOpen(read.open);
   if (!read.held) return null;
   return {
     code: "X27",
@@ -190,13 +194,16 @@ function collectRemarks(
   place: FramePlace,
   label: string | null,
   cell: Cell | null,
-): Remark[] {
-  return [
+): readonly IntakeMessage[] {
+  const remarks = [
     ...countRemarks(builder),
     ...commentRemarks(builder, label, cell),
     ...atomRemarks(builder),
     ...noteRemarks(place),
   ];
+  if (remarks.length === 0) return NO_REMARKS;
+  const at = { severity: "remark" as const, file: place.file, frame: place.number };
+  return remarks.map((remark) => ({ ...remark, ...at }));
 }
 
 function countRemarks(builder: FrameBuilder): Remark[] {

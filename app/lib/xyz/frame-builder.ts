@@ -35,6 +35,11 @@ export interface TextLine {
 const NO_KEYS: ReadonlyMap<string, ExtendedEntry> = new Map();
 const NO_ELEMENTS = new Uint8Array(0);
 const NO_POSITIONS = new Float64Array(0);
+/** Shared by all frames that leave nothing open: nearly all of them. */
+const NOTHING_OPEN: ReadonlyMap<Ask, OpenReading> = new Map();
+const NO_CAPITALS: readonly OpenCapitals[] = [];
+const NO_ATOMS: ReadonlySet<number> = new Set();
+const NO_COLUMNS: readonly ExtraColumn[] = [];
 /** x, y and z of a line that may turn out to be no atom. */
 const position = new Float64Array(3);
 const NO_ODDITIES: ReadonlyMap<CommentOddity, string> = new Map();
@@ -70,10 +75,10 @@ export class FrameBuilder implements PlainTarget {
   substitutions = 0;
   commaLines = 0;
   /** What was open and read as the choices say, the first line of each kind. */
-  readonly open = new Map<Ask, OpenReading>();
-  readonly capitals: OpenCapitals[] = [];
+  open: ReadonlyMap<Ask, OpenReading> = NOTHING_OPEN;
+  capitals: readonly OpenCapitals[] = NO_CAPITALS;
   /** Atoms whose numbers have decimal commas, and what was wrong with the first of them. */
-  readonly commaAtoms = new Set<number>();
+  commaAtoms: ReadonlySet<number> = NO_ATOMS;
   commaFault: BuilderFault | null = null;
   readonly choices: ReadingChoices;
 
@@ -178,11 +183,26 @@ export class FrameBuilder implements PlainTarget {
     const found = readOpenLine(line.text, layout, position, read, choices);
     if (found === null) return null;
     for (const one of found.open) {
-      if (one.ask === "decimal-comma") this.commaAtoms.add(read);
-      if (!this.open.has(one.ask)) this.open.set(one.ask, { ...one, line: line.number });
+      if (one.ask === "decimal-comma") this.#noteComma(read);
+      if (!this.open.has(one.ask)) this.noteOpen({ ...one, line: line.number });
     }
-    if (found.capitals) this.capitals.push({ atom: read, ...found.capitals });
+    if (found.capitals) this.#noteCapitals({ atom: read, ...found.capitals });
     return found.result;
+  }
+
+  noteOpen(reading: OpenReading): void {
+    if (this.open === NOTHING_OPEN) this.open = new Map();
+    (this.open as Map<Ask, OpenReading>).set(reading.ask, reading);
+  }
+
+  #noteComma(atom: number): void {
+    if (this.commaAtoms === NO_ATOMS) this.commaAtoms = new Set();
+    (this.commaAtoms as Set<number>).add(atom);
+  }
+
+  #noteCapitals(capitals: OpenCapitals): void {
+    if (this.capitals === NO_CAPITALS) this.capitals = [];
+    (this.capitals as OpenCapitals[]).push(capitals);
   }
 
   #note(fault: BuilderFault): void {
@@ -246,8 +266,8 @@ export class FrameBuilder implements PlainTarget {
 
   /** Per-atom columns beyond element and position: named by Properties, or only counted. */
   extraColumns(): readonly ExtraColumn[] {
-    if (this.layout === null) return [];
+    if (this.layout === null || (this.layout === PLAIN_LAYOUT && this.extra <= 0)) return NO_COLUMNS;
     if (this.layout !== PLAIN_LAYOUT) return this.layout.extra;
-    return Array.from({ length: Math.max(0, this.extra) }, () => ({ name: null, type: "R", count: 1 }));
+    return Array.from({ length: this.extra }, () => ({ name: null, type: "R", count: 1 }));
   }
 }

@@ -3,7 +3,13 @@ import { COVALENT_RADII } from "../chem/elements.ts";
 /** Bonded means within this many times the summed covalent radii (the rule of bond perception). */
 const BOND_FACTOR = 1.2;
 
-/** Nearest neighbour of an atom as a multiple of the summed covalent radii; Infinity where there is none. */
+/** No atom has a neighbour nearer than that, as a multiple of the summed covalent radii, where bohr are read as Å. */
+const NEAREST_IN_BOHR = 1.4;
+
+/**
+ * Nearest neighbour of an atom as a multiple of the summed covalent radii; Infinity where there is none. Below
+ * `NEAREST_IN_BOHR` any neighbour's will do.
+ */
 function nearestRatio(elements: Uint8Array, positions: Float64Array, atom: number): number {
   const radius = COVALENT_RADII[elements[atom]!]!;
   let nearest = Infinity;
@@ -14,7 +20,9 @@ function nearestRatio(elements: Uint8Array, positions: Float64Array, atom: numbe
     const dy = positions[3 * atom + 1]! - positions[3 * other + 1]!;
     const dz = positions[3 * atom + 2]! - positions[3 * other + 2]!;
     const ratio = (dx * dx + dy * dy + dz * dz) / (sum * sum);
-    if (ratio < nearest) nearest = ratio;
+    if (ratio >= nearest) continue;
+    nearest = ratio;
+    if (Math.sqrt(nearest) < NEAREST_IN_BOHR) break;
   }
   return Math.sqrt(nearest);
 }
@@ -24,14 +32,14 @@ function nearestRatio(elements: Uint8Array, positions: Float64Array, atom: numbe
  * 1.9 times the summed covalent radii (row X27). Bounds 1.4 for each atom (triple bonds of 1.15 Å come to 1.49 in bohr),
  * 1.45 and 2.3 for the middle one are ours: bonds run from 0.8 to 1.2.
  *
- * Costs one pass over the atoms for any molecule in Å, as its first atom is bonded.
+ * Costs no more than one pass over the atoms for any molecule in Å, as its first atom is bonded.
  */
 export function looksLikeBohr(elements: Uint8Array, positions: Float64Array): boolean {
   const ratios: number[] = [];
   for (let atom = 0; atom < elements.length; atom++) {
     if (COVALENT_RADII[elements[atom]!] === 0) continue;
     const ratio = nearestRatio(elements, positions, atom);
-    if (ratio < 1.4) return false;
+    if (ratio < NEAREST_IN_BOHR) return false;
     ratios.push(ratio);
   }
   if (ratios.length < 3) return false;
