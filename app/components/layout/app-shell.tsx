@@ -1,5 +1,6 @@
 import { type ReactNode, type RefObject, useEffect, useRef } from "react";
 import { href, Link, useLocation } from "react-router";
+import { KeyHelp } from "~/components/help/key-help";
 import { ButtonLink } from "~/components/ui/button";
 import { linkClass } from "~/components/ui/text-link";
 import { Toasts } from "~/components/ui/toast";
@@ -43,6 +44,7 @@ export function AppShell({
       </main>
       <Foot recipe={recipe} results={results} />
       <Toasts />
+      <KeyHelp />
     </div>
   );
 }
@@ -131,6 +133,9 @@ function Foot({ recipe, results }: { recipe?: ReactNode; results: boolean }) {
           </Link>
           <Link className={linkClass} to={href("/formats")}>
             What the readers accept
+          </Link>
+          <Link className={linkClass} to={href("/words")}>
+            Words and keys
           </Link>
           <Link className={linkClass} to={href("/api")}>
             The API
