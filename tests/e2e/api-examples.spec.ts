@@ -53,16 +53,19 @@ async function push(baseURL: string, series: string, files: string[]) {
   };
 }
 
-test("the batch job sends files, and sent again nothing doubles", async ({ page, baseURL }) => {
-  await makeToken(page, "Batch job");
-  const files = ["a.xyz", "b.xyz", "c.xyz"];
+test("the batch job sends files, and sent again nothing doubles", async ({ page, request, baseURL }) => {
+  const token = await makeToken(page, "Batch job");
+  const files = Array.from({ length: 12 }, (_, n) => `run-${n}.xyz`);
   for (const [n, name] of files.entries()) writeFileSync(path.join(folder, name), someFrames(n + 1));
   const first = await push(baseURL ?? "", "Night run", files);
   expect(first.rows.map(({ file, status }) => [file, status])).toEqual(files.map((file) => [file, 201]));
   expect(first.code).toBe(0);
   const again = await push(baseURL ?? "", "Night run", files);
-  expect(again.rows.map(({ status }) => status)).toEqual([200, 200, 200]);
+  expect(again.rows.map(({ status }) => status)).toEqual(files.map(() => 200));
   expect(again.rows.map(({ id }) => id)).toEqual(first.rows.map(({ id }) => id));
+  const headers = { authorization: `Bearer ${token}` };
+  const list = await request.get("/api/v1/ensembles?series=Night%20run", { headers });
+  expect((await list.json()) as { total: number }).toMatchObject({ total: files.length });
 });
 
 test("the batch job says what was refused and goes on", async ({ page, baseURL }) => {
