@@ -7,8 +7,10 @@ import type { Actor } from "~/services/auth/access.server";
 import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
 import { loadSource } from "~/services/ensembles/load-source.server";
 import { splitOff } from "~/services/ensembles/split-off.server";
+import { record } from "../factories/mol";
 import { makeMember } from "../factories/people";
 import { BUTANE, frame, makeLab, takenIn } from "../factories/upload";
+import { zipOf } from "../factories/zip";
 
 let lab: Awaited<ReturnType<typeof makeLab>>;
 let actor: Actor;
@@ -37,8 +39,8 @@ function mixture(tag: string): string {
   ].join("");
 }
 
-async function bytesOf(ensembleId: string): Promise<string> {
-  const { chunks } = await loadSource({ actor, ensembleId, position: 0 });
+async function bytesOf(ensembleId: string, position = 0): Promise<string> {
+  const { chunks } = await loadSource({ actor, ensembleId, position });
   const all: Uint8Array[] = [];
   for await (const chunk of chunks) all.push(chunk);
   return Buffer.concat(all).toString();
@@ -96,6 +98,56 @@ describe("held frames of something else", () => {
     const made = await splitOff({ actor, ensembleId: parent.id, frame: 4 });
     expect(made.frames).toBe(1);
     expect(await bytesOf(made.ensembleId)).toBe(frame("kinds_4 energy=-0.2", BROKEN));
+  });
+
+  it("are cut out of the entries of a zip archive, each under the name of its entry", async () => {
+    const content = zipOf([
+      { name: "night/first.xyz", content: mixture("zip") },
+      { name: "night/plain.xyz", content: frame("plain energy=-1.2"), store: true },
+      { name: "second.xyz", content: mixture("more"), store: true },
+    ]);
+    const parent = await takenIn(lab.token, [{ name: "runs.zip", content }], fields);
+    expect(parent.intake).toMatchObject({ frames: 13, accepted: 7, held: 6 });
+    const made = await splitOff({ actor, ensembleId: parent.id, frame: 2 });
+    expect(made).toMatchObject({ created: true, frames: 4 });
+    const child = await describeEnsemble(lab.team.id, made.ensembleId);
+    expect(child).toMatchObject({ formula: "H2O", intake: { frames: 4, accepted: 4, held: 0 } });
+    expect(child.files.map(({ name, frames }) => [name, frames])).toEqual([
+      ["first, frame 2 and 1 more.xyz", 2],
+      ["second, frame 9 and 1 more.xyz", 2],
+    ]);
+    expect(await bytesOf(made.ensembleId, 0)).toBe(
+      frame("zip_2 energy=-76.1", WATER) + frame("zip_5 energy=-76.3", WATER),
+    );
+    expect(await bytesOf(made.ensembleId, 1)).toBe(
+      frame("more_2 energy=-76.1", WATER) + frame("more_5 energy=-76.3", WATER),
+    );
+    // The same frames, asked for by one of the other entry, make no second ensemble.
+    const again = await splitOff({ actor, ensembleId: parent.id, frame: 12 });
+    expect(again).toEqual({ ...made, created: false });
+  });
+
+  it("come out of an SDF in a zip archive as records", async () => {
+    const peroxide = [
+      { symbol: "O", at: [0, 0.73, -0.05] },
+      { symbol: "O", at: [0, -0.73, -0.05] },
+      { symbol: "H", at: [0.8, 0.9, 0.43] },
+      { symbol: "H", at: [-0.8, -0.9, 0.43] },
+    ] as const;
+    const own = record("own");
+    const other = record("other", {
+      atoms: peroxide,
+      bonds: [
+        [1, 2, 1],
+        [1, 3, 1],
+        [2, 4, 1],
+      ],
+    });
+    const content = zipOf([{ name: "set.sdf", content: own + other + own }]);
+    const parent = await takenIn(lab.token, [{ name: "set.zip", content }], {});
+    expect(parent.intake).toMatchObject({ accepted: 2, held: 1 });
+    const made = await splitOff({ actor, ensembleId: parent.id, frame: 2 });
+    expect(await bytesOf(made.ensembleId)).toBe(other);
   });
 
   it("are refused where they are accepted, unknown, or asked for by a reader or a stranger", async () => {

@@ -1,6 +1,7 @@
 import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage } from "../../lib/intake/report.ts";
-import { SNIFF_BYTES, sniff } from "../../lib/text/sniff.ts";
+import { sniff } from "../../lib/text/sniff.ts";
+import { readHead } from "../ensembles/read-head.ts";
 
 export interface DetectedFile {
   format: "table" | "xyz" | "sdf" | "unknown";
@@ -51,27 +52,11 @@ export async function detectFormat(
   bytes: AsyncIterable<Uint8Array>,
   remark: (message: IntakeMessage) => void,
 ): Promise<DetectedFile> {
-  const source = bytes[Symbol.asyncIterator]();
-  const pieces: Uint8Array[] = [];
-  let length = 0;
-  let ended = false;
-  while (length < SNIFF_BYTES && !ended) {
-    const next = await source.next();
-    if (next.done) ended = true;
-    else {
-      pieces.push(next.value);
-      length += next.value.length;
-    }
+  const { head, bytes: whole, close } = await readHead(bytes);
+  try {
+    return { format: formatOf(name, head, remark), bytes: whole };
+  } catch (error) {
+    await close();
+    throw error;
   }
-  const head = Buffer.concat(pieces);
-  const whole = async function* () {
-    try {
-      yield head;
-      for (let next = await source.next(); !next.done; next = await source.next()) yield next.value;
-    } finally {
-      await source.return?.();
-    }
-  };
-  const format = formatOf(name, head, remark);
-  return { format, bytes: whole() };
 }

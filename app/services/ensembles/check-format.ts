@@ -1,6 +1,7 @@
 import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage } from "../../lib/intake/report.ts";
-import { SNIFF_BYTES, type Sniffed, sniff } from "../../lib/text/sniff.ts";
+import { type Sniffed, sniff } from "../../lib/text/sniff.ts";
+import { readHead } from "./read-head.ts";
 
 /** A file whose first bytes have said which reader takes it. */
 export interface CheckedFile {
@@ -53,33 +54,11 @@ export async function checkFormat(
   bytes: AsyncIterable<Uint8Array>,
   remark: (message: IntakeMessage) => void,
 ): Promise<CheckedFile> {
-  const source = bytes[Symbol.asyncIterator]();
-  const pieces: Uint8Array[] = [];
-  let length = 0;
-  let ended = false;
-  while (length < SNIFF_BYTES && !ended) {
-    const next = await source.next();
-    if (next.done) ended = true;
-    else {
-      pieces.push(next.value);
-      length += next.value.length;
-    }
-  }
-  const head = Buffer.concat(pieces);
-  let format: CheckedFile["format"];
+  const { head, bytes: whole, close } = await readHead(bytes);
   try {
-    format = checkHead(name, head, remark);
+    return { format: checkHead(name, head, remark), bytes: whole };
   } catch (error) {
-    await source.return?.();
+    await close();
     throw error;
   }
-  const whole = async function* () {
-    try {
-      yield head;
-      for (let next = await source.next(); !next.done; next = await source.next()) yield next.value;
-    } finally {
-      await source.return?.();
-    }
-  };
-  return { format, bytes: whole() };
 }
