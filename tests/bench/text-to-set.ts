@@ -1,3 +1,4 @@
+import "../../scripts/lib/engine.mjs";
 import { createReadStream, statSync } from "node:fs";
 import { FrameClassifier } from "../../app/lib/intake/classify.ts";
 import { EnergyScan } from "../../app/lib/intake/energies.ts";
@@ -10,7 +11,7 @@ import { processor } from "./clock.ts";
 import { FrameStore } from "./frame-store.ts";
 
 /**
- * The process behind rows that include its start: streams a file through the product's own reader, classifier and
+ * The process behind rows that include its start, with the settings of the engine that the product runs with: streams a file through the product's own reader, classifier and
  * energy scan, sifts the accepted frames, weighs the kept ones, and prints as JSON what that took.
  *
  * Arguments: "set" or "read" (the reader alone), the file, energy tolerance in kcal/mol or "none", number of sifts.
