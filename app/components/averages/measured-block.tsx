@@ -208,7 +208,7 @@ function NucleusTable({
       {nuclei.map(({ z, line, agreement, farthest }) => (
         <section key={z} aria-label={`Nucleus ${symbolOf(z)}`} className="border-t border-rule pt-3">
           <p className="figures max-w-read">
-            <b>{symbolOf(z)}</b> {agreementWords(agreement, unit, nameOf(farthest))}
+            <b>{symbolOf(z)}</b> {agreementWords(agreement, unit, nameOf(farthest), line?.from === "fitted")}
           </p>
           {shieldings ? (
             <>
@@ -270,12 +270,18 @@ function lineWords(line: Nucleus["line"]): string {
   return `Fitted to ${plural(line.n, "measured shift")}.`;
 }
 
-function agreementWords(agreement: Nucleus["agreement"], unit: string | null, farthest: string): string {
+/** A line that was fitted to these very values has slope 1 against them: there is nothing to take out. */
+function agreementWords(
+  agreement: Nucleus["agreement"],
+  unit: string | null,
+  farthest: string,
+  fitted: boolean,
+): string {
   if (agreement === null) return "Nothing measured yet.";
   const of = (value: number) => withUnit(fixed(value, 2), unit ?? "");
   const { n, mad, rmsd, max, corrected } = agreement;
   const line =
-    corrected === null
+    corrected === null || fitted
       ? ""
       : ` Against the measured values it runs with slope ${fixed(corrected.line.slope, 3)} and intercept ${of(corrected.line.intercept)}; with that taken out the mean is ${of(corrected.mad)}.`;
   return `${plural(n, "value")}: mean absolute deviation ${of(mad)}, root mean square ${of(rmsd)}, largest ${of(max)} at ${farthest}.${line}`;
@@ -337,7 +343,7 @@ function BesideTable({
               <Td align="right" className="max-sm:hidden">
                 {group.computedError === null ? ABSENT : `± ${fixed(group.computedError, 2)}`}
               </Td>
-              <Td>
+              <Td className="py-1">
                 <NumberField
                   label={`Measured, ${nameOf(group.atom)}`}
                   hideLabel

@@ -1,9 +1,11 @@
-import { Plus, X } from "lucide-react";
+import { Download, Plus, X } from "lucide-react";
+import { saveText } from "~/components/charts/export-figure";
 import { Button, IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { ABSENT, capital, countWord, formatCount, formatEnergy, formatPopulation } from "~/lib/format";
+import { alternativesCsv } from "~/lib/plan/alternatives-csv";
 import { marginalCosts } from "~/lib/plan/front";
 import { MAX_ALTERNATIVES, type PlanSet } from "~/lib/plan/plan";
 import type { PlansReport } from "~/lib/plan/report";
@@ -79,13 +81,22 @@ export function AlternativesTable({
         id="plan-alternatives"
         title={plans.length === 1 ? "One plan" : `${capital(countWord(plans.length))} plans side by side`}
       >
+        <Button
+          size="sm"
+          icon={<Download aria-hidden="true" />}
+          disabled={outcomes === null}
+          onClick={() => outcomes && saveText("plans.csv", "text/csv", alternativesCsv(set, outcomes))}
+        >
+          CSV
+        </Button>
         {readOnly || plans.length >= MAX_ALTERNATIVES ? null : (
           <Button size="sm" icon={<Plus aria-hidden="true" />} onClick={add}>
             Compare another
           </Button>
         )}
       </BlockHead>
-      <div className="overflow-x-auto">
+      {/* Positioned: words for screen readers alone would else widen the page. */}
+      <div className="relative overflow-x-auto">
         <Table aria-labelledby="plan-alternatives">
           <thead>
             <tr>

@@ -1,4 +1,4 @@
-import { useMemo, useState } from "react";
+import { useMemo } from "react";
 import { href } from "react-router";
 import { LevelsTabs } from "~/components/levels/levels-tabs";
 import { type LevelData, useLevelData, useMembers } from "~/components/levels/use-comparison";
@@ -8,7 +8,7 @@ import { BlockHead, Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
 import { Skeleton } from "~/components/ui/skeleton";
 import { StatePanel } from "~/components/ui/state-panel";
-import { TextLink } from "~/components/ui/text-link";
+import { TextButton, TextLink } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
@@ -21,8 +21,9 @@ import { AlternativesTable } from "./alternatives-table";
 import { CostChart } from "./cost-chart";
 import { FirstWindowChart } from "./first-window-chart";
 import { PlanSettings } from "./plan-settings";
-import { type OpenPlan, SavePlan } from "./save-plan";
+import { SavePlan } from "./save-plan";
 import { StepsTable } from "./steps-table";
+import { usePlanDraft } from "./use-plan-draft";
 import { type PlanFigures, usePlanReport } from "./use-plan-report";
 
 /** Plan: which conformers to carry through which levels, what it costs, and what it keeps. */
@@ -70,8 +71,9 @@ function Planned({
   const { ensemble, sift, state } = useWorkbench();
   const fresh = () =>
     firstPlans(first, { sift: sift?.id ?? null, temperatureK: state.temperatureK, n: members.length });
-  const [set, setSet] = useState<PlanSet>(() => saved[0]?.plans ?? fresh());
-  const [open, setOpen] = useState<OpenPlan | null>(() => saved[0] ?? null);
+  const shownAs = (one: SavedPlans | null) => ({ set: one?.plans ?? fresh(), open: one });
+  const { draft, unsaved, edit: setSet, show } = usePlanDraft(ensemble.id, () => shownAs(saved[0] ?? null));
+  const { set, open } = draft;
   const figures = usePlanReport(set, levels, members, ensemble.atoms);
   const readOnly = !ensemble.mayCompute;
   const plan = set.plans[set.chosen]?.plan ?? set.plans[0]?.plan;
@@ -100,11 +102,16 @@ function Planned({
         open={open}
         saved={saved}
         readOnly={readOnly}
-        onOpen={(one) => {
-          setSet(one?.plans ?? fresh());
-          setOpen(one);
-        }}
+        onOpen={(one) => show(shownAs(one))}
       />
+      {unsaved ? (
+        <p className="mt-2 text-xs text-ink-3 print:hidden">
+          Not saved yet; kept in this tab.{" "}
+          <TextButton onClick={() => show(shownAs(saved.find(({ id }) => id === open?.id) ?? null))}>
+            {open === null ? "Start anew" : `Back to ${open.name} as saved`}
+          </TextButton>
+        </p>
+      ) : null}
       {startLevel === undefined ? (
         <Note tone="held" className="mt-4">
           The level that this plan started from is gone. Choose another start.

@@ -1,6 +1,7 @@
 import { Cite, FormulaLine, SectionLink } from "~/components/layout/reference-page";
 import { LEAST_COVERED } from "~/lib/averages/average";
 import { KARPLUS_SETS } from "~/lib/averages/karplus";
+import { FEWEST_FOR_CORRECTION, FEWEST_FOR_SCALING } from "~/lib/averages/shielding-fit";
 import { formatPercent } from "~/lib/format";
 import { LEAST_RESULTANT } from "~/lib/measure/circular";
 
@@ -51,6 +52,16 @@ export function AveragesText() {
         ; for H–C–C–H with substituents the general set of <Cite>Tetrahedron 1980, 36, 2783</Cite>, with what
         the substituents carry themselves taken into account. Electronegativities of C and O are those of the
         set, the others from memory. J is averaged, never the angle.
+      </p>
+      <p>
+        Shieldings become shifts by linear scaling, δ = (intercept − σ)/(−slope){" "}
+        <Cite remembered>Chem. Rev. 2012, 112, 1839</Cite>: slope and intercept are typed in, or fitted by
+        least squares to at least {FEWEST_FOR_SCALING} measured shifts of the same nucleus (σ = intercept +
+        slope δ); they belong to one level, solvent and nucleus. With slope −1 the intercept is the shielding
+        of the reference. Against measured values: mean absolute, root mean square and largest deviation, a
+        nucleus at a time and never pooled; from {FEWEST_FOR_CORRECTION} pairs on also the line of computed
+        against measured values, d = m e + b, and the mean absolute deviation of (d − b)/m. A line fitted to
+        the values that it is compared with flatters.
       </p>
       <p>
         Labels of torsions: c up to 30°, g± to 90°, a± to 150°, t above{" "}

@@ -82,6 +82,12 @@ describe("chooseLevels", () => {
     expect(asked("gone", "lost")).toEqual(["MMFF94", "CCSD(T)/CBS"]);
   });
 
+  it("takes what is called the reference as one, beside names that say nothing", () => {
+    expect(names(cheapAndBetter(named("reference", "cheap")))).toEqual(["cheap", "reference"]);
+    expect(names(cheapAndBetter(named("level 1", "published", "level 2")))).toEqual(["level 1", "published"]);
+    expect(names(cheapAndBetter(named("level 1", "MMFF94")))).toEqual(["level 1", "MMFF94"]);
+  });
+
   it("never compares a level with itself", () => {
     expect(names(chooseLevels(levels, { level: "id0", reference: "id0" }))).toEqual(["CCSD(T)/CBS", "B3LYP"]);
     expect(names(chooseLevels(levels.slice(0, 1), { level: "id0", reference: null }))).toEqual([

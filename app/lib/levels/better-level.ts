@@ -85,6 +85,11 @@ export function cheapAndBetter<T extends { name: string }>(
   known.sort((a, b) => a.rank - b.rank);
   const [cheapest, best] = [known[0], known.at(-1)];
   if (cheapest && best && cheapest.rank < best.rank) return { level: cheapest.level, reference: best.level };
+  // Called the reference, it is one beside levels whose names say nothing.
+  if (best && LEVEL_KINDS[best.rank] === "reference" && known.length < ranked.length) {
+    const other = ranked.find(({ kind }) => kind === null);
+    if (other) return { level: other.level, reference: best.level };
+  }
   return { level: first.level, reference: ranked.length > 1 ? ranked.at(-1)!.level : null };
 }
 

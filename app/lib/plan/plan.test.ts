@@ -1,6 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import { compareLevels } from "../levels/compare.ts";
+import { alternativesCsv } from "./alternatives-csv.ts";
 import { evaluatePlan, type PlanData } from "./evaluate.ts";
 import { marginalCosts, planFront } from "./front.ts";
 import { defaultHours, hoursEach, RULES } from "./hours.ts";
@@ -377,4 +378,34 @@ describe("a first set of plans", () => {
   it("takes as many draws as a page can wait for", () => {
     expect([31, 505, 50_000].map(drawsOfPlan)).toEqual([10_000, 4950, 500]);
   });
+});
+
+it("plans side by side as a file: what each keeps, costs, and what each further percent costs", () => {
+  const narrow = plan({ steps: [step({ cut: { by: "window", kcal: 1.1 } })] });
+  const wide = plan({ steps: [step({ cut: { by: "window", kcal: 1.4 } })] });
+  const open = plan({ steps: [step({ hours: { from: "unknown" } })] });
+  const plans = [narrow, wide, open].map((one, k) => ({ name: ["Narrow", "Wide", "Open"][k]!, plan: one }));
+  const outcomes = plans.map((one) => evaluatePlan(one.plan, data()));
+  const text = alternativesCsv({ version: 1, sift: null, chosen: 1, plans }, outcomes);
+  const [head, ...rows] = text
+    .trim()
+    .split("\r\n")
+    .map((line) => line.split(","));
+  const of = (name: string, k: number) => rows[k]![head!.indexOf(name)];
+  expect(rows.map(([name, here]) => [name, here])).toEqual([
+    ["Narrow", "no"],
+    ["Wide", "yes"],
+    ["Open", "no"],
+  ]);
+  // Kept by hand: 0.86419 within 1.1, 0.98329 within 1.4 kcal/mol; 3 and 4 structures of 3.4 h with 4 % repeats.
+  expect(Number(of("kept [%]", 0))).toBeCloseTo(86.419, 2);
+  expect(Number(of("kept [%]", 1))).toBeCloseTo(98.329, 2);
+  expect(Number(of("lost [%]", 1))).toBeCloseTo(100 - 98.329, 2);
+  expect([of("structures 1", 0), of("structures 1", 1), of("structures 1", 2)]).toEqual(["3", "4", "6"]);
+  expect(Number(of("cost [core hours]", 1))).toBeCloseTo(4 * 3.4 * 1.04, 9);
+  expect(Number(of("each percent above the last [core hours]", 1))).toBeCloseTo(
+    (3.4 * 1.04) / (98.3288 - 86.4192),
+    3,
+  );
+  expect([of("cost [core hours]", 2), of("window 1 [kcal/mol]", 2)]).toEqual(["", "all"]);
 });
