@@ -28,6 +28,7 @@ export default defineConfig({
     restoreMocks: true,
     // For machines with other work: nothing here tells time.
     testTimeout: 30_000,
+    hookTimeout: 60_000,
     projects: [
       {
         extends: true,
@@ -46,7 +47,6 @@ export default defineConfig({
           include: ["tests/integration/**/*.test.{ts,tsx}"],
           globalSetup: ["tests/setup/server.ts"],
           setupFiles: ["tests/setup/console.ts", "tests/setup/database.ts"],
-          hookTimeout: 60_000,
         },
       },
     ],

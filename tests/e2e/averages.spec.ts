@@ -1,6 +1,6 @@
 import { readFileSync } from "node:fs";
 import type { Page } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { enter, expect, expectAccessible, hydrated, test } from "./base";
 
 /** Four hundred frames of N-butyl-4-methylbenzenesulfonamide with two energies in their fields (fixtures/README.md). */
 const tosylamide = readFileSync(
@@ -10,12 +10,11 @@ const tosylamide = readFileSync(
 
 /** Takes the file into the analyst's team under titles of its own, and opens a section. */
 async function takeIn(page: Page, section: string): Promise<string> {
-  await signIn(page);
-  const team = new URL(page.url()).pathname.split("/")[2] ?? "";
+  const { team, origin } = await enter(page);
   const own = `>  <RUN>\n${process.pid}-${Date.now()}\n\n$$$$\n`;
   const text = tosylamide.replaceAll("$$$$\n", () => own);
   const answer = await page.request.post("/files/upload", {
-    headers: { origin: new URL(page.url()).origin },
+    headers: { origin },
     multipart: {
       team,
       level: "MMFF94",

@@ -1,6 +1,15 @@
 import { readFileSync } from "node:fs";
 import type { Page } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import {
+  enter,
+  expect,
+  expectAccessible,
+  expectAccessibleEverywhere,
+  expectNoSideways,
+  hydrated,
+  openDemo,
+  test,
+} from "./base";
 
 const difluoroethane = readFileSync(
   new URL("../../fixtures/reference/ensembles/difluoroethane.xyz", import.meta.url),
@@ -19,11 +28,11 @@ async function openColumns(page: Page): Promise<string[]> {
       "\n",
     );
   });
-  await signIn(page);
+  const { team, origin } = await enter(page);
   const answer = await page.request.post("/files/upload", {
-    headers: { origin: new URL(page.url()).origin },
+    headers: { origin },
     multipart: {
-      team: new URL(page.url()).pathname.split("/")[2] ?? "",
+      team,
       level: "MMFF94",
       energyUnit: "kcal/mol",
       energyFrom: "key:energy",
@@ -102,18 +111,12 @@ test("a second structure file in another order becomes a level, and a formula an
 });
 
 test("a reader sees the columns and no way to change them", async ({ page }) => {
-  await signIn(page, "reader");
-  const address = await page
-    .getByRole("link", { name: "N-Acetyl-L-alanine N-methylamide", exact: true })
-    .getAttribute("href");
-  for (const width of [1440, 390, 320]) {
-    await page.setViewportSize({ width, height: 900 });
-    await page.goto(`${address}/columns`);
-    await hydrated(page);
-    await expect(page.getByText("An analyst or an owner of the team adds levels and tables.")).toBeVisible();
-    await expect(page.getByRole("button", { name: /^Change / })).toHaveCount(0);
-    await expectAccessible(page);
-    const sideways = await page.evaluate(() => document.documentElement.scrollWidth - window.innerWidth);
-    expect(sideways).toBeLessThanOrEqual(0);
-  }
+  await openDemo(page, "N-Acetyl-L-alanine N-methylamide", "columns", "reader");
+  await expect(page.getByText("An analyst or an owner of the team adds levels and tables.")).toBeVisible();
+  await expect(page.getByRole("button", { name: /^Change / })).toHaveCount(0);
+  await expectAccessibleEverywhere(page, "the columns");
+  await expect(page.getByText("An analyst or an owner of the team adds levels and tables.")).toBeVisible();
+  await expect(page.getByRole("button", { name: /^Change / })).toHaveCount(0);
+  await page.setViewportSize({ width: 320, height: 900 });
+  await expectNoSideways(page, "the columns at 320 px");
 });

@@ -1,4 +1,12 @@
-import { DEMO_PASSWORD, expect, expectAccessible, hydrated, signIn, signUp, test } from "./base";
+import {
+  DEMO_PASSWORD,
+  expect,
+  expectAccessibleEverywhere,
+  hydrated,
+  signIn,
+  signUpByForm,
+  test,
+} from "./base";
 
 test.describe("the doors", () => {
   test("let the analyst in by keyboard alone, and out again", async ({ page }) => {
@@ -31,33 +39,29 @@ test.describe("the doors", () => {
   });
 
   test("open a team of one's own to a new user", async ({ page }) => {
-    await signUp(page, "Ada Quist", `ada.${Date.now()}@lab.example`);
+    await signUpByForm(page, "Ada Quist", `ada.${Date.now()}@lab.example`);
     await expect(page.getByText("Ada Quist's team").first()).toBeVisible();
   });
-
-  for (const path of [
-    "/login",
-    "/sign-up",
-    "/reset-password",
-    "/reset-password/no-such-link",
-    "/no/such/page",
-  ]) {
-    test.describe(path, () => {
-      test.use({ allowRefusals: true });
-      for (const scheme of ["light", "dark"] as const) {
-        test(`is accessible by ${scheme === "light" ? "day" : "night"}`, async ({ page }) => {
-          await page.emulateMedia({ colorScheme: scheme });
-          await page.goto(path);
-          await hydrated(page);
-          await expectAccessible(page);
-        });
-      }
-    });
-  }
 });
 
 test.describe("refusals", () => {
   test.use({ allowRefusals: true });
+
+  test("and doors are accessible by day and by night", async ({ page }) => {
+    // Five pages, each looked at twice.
+    test.slow();
+    for (const path of [
+      "/login",
+      "/sign-up",
+      "/reset-password",
+      "/reset-password/no-such-link",
+      "/no/such/page",
+    ]) {
+      await page.goto(path);
+      await hydrated(page);
+      await expectAccessibleEverywhere(page, path);
+    }
+  });
 
   test("stand beside the form, which keeps the address", async ({ page }) => {
     await page.goto("/login");

@@ -1,7 +1,7 @@
 import { existsSync, readFileSync } from "node:fs";
 import { fileURLToPath } from "node:url";
 import type { Page } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { enter, expect, expectAccessible, hydrated, test } from "./base";
 
 const CHEAP = [0.3, 0, 1.4, 1.1, 2.9, 2.5];
 const BETTER = [0, 0.4, 0.9, 1.5, 2.2, 3];
@@ -27,9 +27,7 @@ function ownFrames(text: string, energies: readonly number[]): string {
 
 /** Takes frames in, brings further levels as a table, and opens the section. */
 async function withLevels(page: Page, frames: string, level: string, table: string, search = "") {
-  await signIn(page);
-  const origin = new URL(page.url()).origin;
-  const team = new URL(page.url()).pathname.split("/")[2] ?? "";
+  const { team, origin } = await enter(page);
   const taken = await page.request.post("/files/upload", {
     headers: { origin },
     multipart: {

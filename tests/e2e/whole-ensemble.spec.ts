@@ -1,18 +1,10 @@
 import { readFileSync } from "node:fs";
-import type { Page } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { expect, expectAccessible, openDemo, test } from "./base";
 
 const file = readFileSync(
   new URL("../../fixtures/reference/ensembles/aryl-ether.xyz", import.meta.url),
   "utf8",
 );
-
-async function openDemo(page: Page, name: string, section: string) {
-  await signIn(page);
-  const address = await page.getByRole("link", { name, exact: true }).getAttribute("href");
-  await page.goto(`${address}/${section}`);
-  await hydrated(page);
-}
 
 const ETHER = "4-tert-Butylphenyl 4-(trifluoromethyl)phenyl ether";
 

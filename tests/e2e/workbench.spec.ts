@@ -1,6 +1,6 @@
 import { readFileSync } from "node:fs";
 import type { Page } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, test } from "./base";
+import { enter, expect, expectAccessible, expectNoSideways, hydrated, openDemo, test } from "./base";
 
 /** Two hundred frames of 1,2-difluoroethane; three minima, the gauche pair below anti (fixtures/README.md). */
 const difluoroethane = readFileSync(
@@ -20,10 +20,9 @@ function ownFile(comment: (energy: string, frame: number) => string): string {
 
 /** Takes a file into the analyst's team and opens a section of its ensemble. */
 async function takeIn(page: Page, text: string, answers: Record<string, string>, section: string) {
-  await signIn(page);
-  const team = new URL(page.url()).pathname.split("/")[2] ?? "";
+  const { team, origin } = await enter(page);
   const answer = await page.request.post("/files/upload", {
-    headers: { origin: new URL(page.url()).origin },
+    headers: { origin },
     multipart: {
       team,
       ...answers,
@@ -43,13 +42,6 @@ const named = () => {
   const run = `${process.pid}-${Date.now()}-${count++}`;
   return ownFile((energy, frame) => `run ${run} frame ${frame} energy=${energy}`);
 };
-
-/** A demo ensemble of the analyst's team by its name. */
-async function openDemo(page: Page, name: string, section: string) {
-  const address = await page.getByRole("link", { name, exact: true }).getAttribute("href");
-  await page.goto(`${address}/${section}`);
-  await hydrated(page);
-}
 
 test.describe("intake", () => {
   test("asks for number, unit and level by keyboard alone, then computes", async ({ page }) => {
@@ -125,7 +117,6 @@ test.describe("distinct set", () => {
 
 test.describe("populations", () => {
   test("answer the temperature at once, and keep it in the address", async ({ page }) => {
-    await signIn(page);
     await openDemo(page, "N-Acetyl-L-alanine N-methylamide", "populations");
     const finding = page.getByText(/of the ensemble at 298\.15\sK/);
     await expect(finding).toBeVisible();
@@ -140,7 +131,6 @@ test.describe("populations", () => {
   });
 
   test("the table is walked, sorted and selected by keys", async ({ page }) => {
-    await signIn(page);
     await openDemo(page, "N-Acetyl-L-alanine N-methylamide", "populations");
     const rows = page.locator("tr[data-row]");
     await rows.first().focus();
@@ -160,7 +150,6 @@ test.describe("populations", () => {
   });
 
   test("picked atoms are measured in every conformer", async ({ page }) => {
-    await signIn(page);
     await openDemo(page, "N-Acetyl-L-alanine N-methylamide", "populations?at=1,2,4,5");
     await expect(page.getByRole("heading", { name: /^Torsion / })).toBeVisible();
     await expect(page.locator("tr[data-row='0'] td").last()).toHaveText(/^\u2212?\d+$/);
@@ -170,8 +159,7 @@ test.describe("populations", () => {
 
 test.describe("who may only read", () => {
   test("a reader sees settings but moves none", async ({ page }) => {
-    await signIn(page, "reader");
-    await openDemo(page, "1,2-Difluoroethane", "distinct-set");
+    await openDemo(page, "1,2-Difluoroethane", "distinct-set", "reader");
     await expect(page.getByRole("slider", { name: "RMSD tolerance" })).toBeDisabled();
     await expect(
       page.getByText("an analyst or an owner can move these settings", { exact: false }),
@@ -182,13 +170,10 @@ test.describe("who may only read", () => {
   test.describe("strangers", () => {
     test.use({ allowRefusals: true });
     test("find nothing at the address of somebody's ensemble", async ({ page }) => {
-      await signIn(page);
-      const address = await page
-        .getByRole("link", { name: "1,2-Difluoroethane", exact: true })
-        .getAttribute("href");
+      const address = (await enter(page)).ensembles("1,2-Difluoroethane");
       await page.context().clearCookies();
-      await signIn(page, "outsider");
-      await page.goto(`${address}`);
+      await enter(page, "outsider");
+      await page.goto(address);
       await expect(page.getByRole("heading", { name: "Nothing here" })).toBeVisible();
     });
   });
@@ -196,22 +181,23 @@ test.describe("who may only read", () => {
 
 for (const [width, scheme] of [
   [1440, "light"],
-  [1024, "dark"],
-  [390, "light"],
+  [390, "dark"],
 ] as const) {
   test(`every section is accessible at ${width} px by ${scheme === "light" ? "day" : "night"}`, async ({
     page,
   }) => {
     await page.setViewportSize({ width, height: 900 });
     await page.emulateMedia({ colorScheme: scheme });
-    await signIn(page);
     await openDemo(page, "N-Acetyl-L-alanine N-methylamide", "intake");
     for (const section of ["Intake", "Distinct set", "Populations", "Hand-over", "Logbook"]) {
       await page.getByRole("navigation", { name: "Sections" }).getByRole("link", { name: section }).click();
       await expect(page.getByRole("heading", { name: section, level: 2 })).toBeVisible();
       await expectAccessible(page);
-      const sideways = await page.evaluate(() => document.documentElement.scrollWidth - window.innerWidth);
-      expect(sideways, `${section} scrolls sideways`).toBeLessThanOrEqual(0);
+      await expectNoSideways(page, section);
+      if (width !== 1440) continue;
+      await page.setViewportSize({ width: 1024, height: 900 });
+      await expectNoSideways(page, `${section} at 1024 px`);
+      await page.setViewportSize({ width, height: 900 });
     }
   });
 }
