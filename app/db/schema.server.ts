@@ -271,7 +271,8 @@ export const ensembles = mysqlTable(
     answers: jsonColumn(answersSchema)().notNull(),
     /** Nobody needs an account to read it: the live example. */
     example: boolean().notNull().default(false),
-    formula: varchar({ length: 120 }).notNull(),
+    /** Hill order, whole: 118 elements with counts take some 600 characters. */
+    formula: varchar({ length: 1000 }).notNull(),
     atoms: int().notNull(),
     /** Atomic number per atom, one byte each, then mass numbers as little-endian uint16. */
     elements: bytesColumn().notNull(),
@@ -551,6 +552,8 @@ export const sifts = mysqlTable(
     recipeSha: sha256Column().notNull(),
     /** Checksum of the accepted frames and the level's energies that it ran on. */
     inputSha: sha256Column().notNull(),
+    /** Checksum of the molecule and the coordinates of all its frames then; null on sifts of older versions. */
+    geometrySha: sha256Column(),
     recipe: jsonColumn(siftRecipeSchema)().notNull(),
     jobId: idColumn().notNull(),
     keptCount: int(),

@@ -104,7 +104,7 @@ function effect(share: number): string {
 }
 
 /** "1,234 kcal/mol"; what is absurd is not spelt out. */
-function kcalWords(kcal: number): string {
+export function kcalWords(kcal: number): string {
   return kcal > MOST_KCAL ? "more than a million kcal/mol" : `${plain(kcal)} kcal/mol`;
 }
 
@@ -150,9 +150,23 @@ function narrowHint(span: number, unit: EnergyUnit): string {
 }
 
 /**
- * One frame, or a few (one in twenty at most), farther than 100 kcal/mol from the median of others that lie together;
- * else the whole is too wide.
+ * Which of the values lie farther than 100 kcal/mol from the median of others that lie together: one, or a few (one in
+ * twenty at most). Empty where the whole is too wide, or nothing is.
+ *
+ * @returns places in `values`
+ * @example farOff([0, 1, 2, -500], "kcal/mol") // [3]
  */
+export function farOff(values: readonly number[], unit: EnergyUnit): number[] {
+  const median = Float64Array.from(values).sort()[values.length >> 1] ?? 0;
+  const isFar = (value: number) => Math.abs(value - median) * kcalPer(unit) > WIDE_KCAL;
+  const off = values.flatMap((value, place) => (isFar(value) ? [place] : []));
+  const rest = values.filter((value) => !isFar(value));
+  // Of two or three nobody can say which one is off.
+  const few = values.length >= 4 && off.length <= Math.max(1, values.length / 20);
+  return few && (maximum(rest) - minimum(rest)) * kcalPer(unit) <= WIDE_KCAL ? off : [];
+}
+
+/** Frames that are far off, each by itself; else the whole is too wide. */
 function wide(
   column: EnergyColumn,
   there: readonly number[],
@@ -161,18 +175,17 @@ function wide(
   kcal: number,
 ): IntakeMessage[] {
   const median = sorted[sorted.length >> 1]!;
-  const off = there.filter((k) => Math.abs(column.values[k]! - median) * kcalPer(unit) > WIDE_KCAL);
-  const far = new Set(off);
-  const rest = there.filter((k) => !far.has(k)).map((k) => column.values[k]!);
-  const restKcal = rest.length === 0 ? 0 : (maximum(rest) - minimum(rest)) * kcalPer(unit);
-  // Of two or three nobody can say which one is off.
-  const few = there.length >= 4 && off.length <= Math.max(1, there.length / 20);
-  if (off.length === 0 || !few || restKcal > WIDE_KCAL) {
+  const off = farOff(
+    there.map((k) => column.values[k]!),
+    unit,
+  );
+  if (off.length === 0) {
     const message = `The energies span ${kcalWords(kcal)}, more than conformers of one molecule do.`;
     const hint = "Is the unit right, and are all frames the same molecule?";
     return [remark("E12", { file: column.rows[there[0]!]!.file, message, hint })];
   }
-  return off.map((k) => {
+  return off.map((place) => {
+    const k = there[place]!;
     const { frame, file, line, textLine } = column.rows[k]!;
     const away = kcalWords(Math.abs(column.values[k]! - median) * kcalPer(unit));
     const message = `The energy lies ${away} from the middle of the others.`;

@@ -160,7 +160,7 @@ async function writeMolecule(
     .update(ensembles)
     .set({
       answers: written,
-      formula: classification.formula.slice(0, 120),
+      formula: classification.formula,
       atoms: graph.elements.length,
       elements: packElements(graph.elements, graph.isotopes),
       bonds: packBonds(graph.bonds),

@@ -11,6 +11,7 @@ import {
 import type { NewColumn } from "../../lib/intake/settle-energies.ts";
 import { extendColumns } from "./extend-columns.server.ts";
 import { insertMessages } from "./intake-rows.server.ts";
+import { judgeSpread } from "./judge-spread.server.ts";
 import type { ReadResult } from "./reading.server.ts";
 
 type Target = Pick<typeof ensembles.$inferSelect, "id" | "frames">;
@@ -99,5 +100,6 @@ export async function mergeBatch(
   const counts = { before: target.frames, now: target.frames + result.frames };
   const said = await extendColumns(tx, target.id, counts, read.columns, result.files[0]?.name ?? "");
   await insertMessages(tx, target.id, said);
+  await judgeSpread(tx, target, read.columns, result.files[0]?.name ?? "");
   await tx.delete(ensembles).where(eq(ensembles.id, read.ensembleId));
 }
