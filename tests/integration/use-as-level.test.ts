@@ -1,5 +1,8 @@
+import { eq } from "drizzle-orm";
 import { beforeAll, describe, expect, it } from "vitest";
+import { db } from "~/db/client.server";
 import { newId } from "~/db/new-id.server";
+import { sifts } from "~/db/schema.server";
 import { DomainError } from "~/lib/errors";
 import { HARTREE_J, JOULE_PER_CALORIE, PARTICLES_PER_MOL } from "~/lib/units";
 import type { Actor } from "~/services/auth/access.server";
@@ -129,6 +132,44 @@ describe("a second energy of the files", () => {
     });
     expect(reread.status).toBe(200);
     expect(await named(id, "MP2")).toMatchObject({ id: columnId, kind: "property", count: 3 });
+  });
+});
+
+describe("the first energies of an ensemble", () => {
+  const frames = (run: string) =>
+    [1, 2].map((k) => {
+      const atoms = BUTANE.map((line, a) => (a === 0 ? line.replace("0.0000", `0.2${run}${k}`) : line));
+      return frame(`E_mp2=${-158 - k / 1000}`, atoms);
+    });
+  const askedAt = async (ensembleId: string) =>
+    (await db.select({ recipe: sifts.recipe }).from(sifts).where(eq(sifts.ensembleId, ensembleId))).map(
+      ({ recipe }) => recipe.level,
+    );
+
+  it("bring the sift by energies that intake could not ask for, once", async () => {
+    const content = frames("1")
+      .join("")
+      .replaceAll(/E_mp2=.*/g, "");
+    const { id } = await takenIn(token, [{ name: "none.xyz", content }]);
+    expect(await askedAt(id)).toEqual([null]);
+    const add = async (name: string) => {
+      const body = formOf([{ name: "t.csv", content: `frame,${name} [kcal/mol]\n1,0.5\n2,0\n` }]);
+      const path = `/api/v1/ensembles/${id}/columns`;
+      expect((await call(path, { method: "POST", token, body })).status).toBe(201);
+    };
+    await add("first");
+    expect((await askedAt(id)).sort()).toEqual([null, await idOf(id, "first")].sort());
+    await add("second");
+    expect(await askedAt(id)).toHaveLength(2);
+  });
+
+  it("may be a property that is used as a level", async () => {
+    const fields = { energyFrom: "none" };
+    const content = frames("2").join("").replaceAll("E_mp2", "tag=x E_mp2");
+    const { id } = await takenIn(token, [{ name: "prop.xyz", content }], fields);
+    const columnId = await idOf(id, "E_mp2");
+    await makeLevel({ actor, ensembleId: id, columnId, stated: { name: "MP2", unit: "hartree" } });
+    expect(await askedAt(id)).toContain(columnId);
   });
 });
 

@@ -1,4 +1,5 @@
 import { useEffect, useState } from "react";
+import { Letters } from "~/components/workbench/flat-drawing";
 import { symbolOf } from "~/lib/chem/elements";
 import { type FlatDrawing, flatLayout, freeDirection } from "~/lib/workbench/flat-layout";
 
@@ -83,15 +84,7 @@ export function AtomDrawing({
         ))}
       </g>
       {drawing.labels.map((label) => (
-        <text
-          key={`${label.x} ${label.y}`}
-          x={label.x}
-          y={label.y + 4.2}
-          textAnchor="middle"
-          className="fill-ink-2"
-        >
-          {label.symbol}
-        </text>
+        <Letters key={`${label.x} ${label.y}`} label={label} />
       ))}
       {drawing.points.map((point, k) => {
         const atom = drawing.atoms[k] ?? 0;

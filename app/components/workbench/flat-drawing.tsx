@@ -89,7 +89,8 @@ export function FlatMoleculeDrawing({
   );
 }
 
-function Letters({ label }: { label: FlatLabel }) {
+/** Symbol, hydrogens and charge of an atom, in the colour of its element. */
+export function Letters({ label }: { label: FlatLabel }) {
   const { x, y, symbol, hydrogens, charge, side } = label;
   const hydrogen = hydrogens > 0 ? "H" : "";
   const beside = side === "right" || side === "left";

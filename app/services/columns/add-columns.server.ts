@@ -11,6 +11,7 @@ import { frameStrip } from "../ensembles/accepted-frames.server.ts";
 import { findColumns } from "../ensembles/find-columns.server.ts";
 import { openFile } from "../ensembles/open-file.server.ts";
 import type { FormReader } from "../ensembles/read-multipart.server.ts";
+import { siftAfterLevels } from "../ensembles/sift-after-intake.server.ts";
 import { readSource } from "../ensembles/source-writer.server.ts";
 import { log } from "../log.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
@@ -207,6 +208,7 @@ export async function addColumns(options: {
         throw new DomainError("conflict", "The name is taken", message);
       },
     );
+    await siftAfterLevels(at, ids);
     return { kind: "stored", columns: await listColumns(at.ensembleId, ids), messages: plan.messages };
   } finally {
     // What was published answers for its checksum and stays.

@@ -9,6 +9,7 @@ import { DomainError } from "../../lib/errors.ts";
 import { ENERGY_UNITS } from "../../lib/units.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 import { frameStrip } from "../ensembles/accepted-frames.server.ts";
+import { siftAfterLevels } from "../ensembles/sift-after-intake.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { derivedColumns } from "./recompute-derived.server.ts";
@@ -103,7 +104,7 @@ function differences(before: Row, after: Partial<Row>) {
 async function turn(
   target: Target,
   decide: (tx: Transaction, row: Row, at: At) => Promise<Partial<Row>>,
-): Promise<void> {
+): Promise<At> {
   const at = await accessEnsemble(target.actor, "compute", target.ensembleId);
   await inTransaction(async (tx) => {
     await lockEnsemble(tx, at);
@@ -118,6 +119,7 @@ async function turn(
       data: { id: row.id, name: after.name ?? row.name, changes: differences(row, after) },
     });
   });
+  return at;
 }
 
 /**
@@ -130,15 +132,16 @@ async function turn(
  */
 export async function makeLevel(options: Target & { stated: LevelStated }): Promise<void> {
   const { name, ...stated } = levelStatedSchema.parse(options.stated);
-  await turn(options, async (tx, row, at) => {
+  const at = await turn(options, async (tx, row, { userId }) => {
     const why = whyNoLevel({ ...row, computed: row.definition !== null });
     if (why !== null) throw refuse("column", "No level", `"${row.name}" ${why}`, "invalid");
     await refuseTakenName(tx, row, name);
     await refuseWhereNeeded(tx, row);
     const ordinal = await nextOrdinal(tx, row.ensembleId, "energy");
     // Who made it a level stands in `createdBy`: by it a new reading of the files knows that it is one.
-    return { ...stated, name, kind: "energy", kindStated: true, rule: null, ordinal, createdBy: at.userId };
+    return { ...stated, name, kind: "energy", kindStated: true, rule: null, ordinal, createdBy: userId };
   });
+  await siftAfterLevels(at, [options.columnId]);
 }
 
 /**

@@ -28,3 +28,21 @@ export async function siftAfterIntake(at: Grant & { ensembleId: string }): Promi
     log.warn({ err: error, ensembleId: at.ensembleId }, "no sift after intake");
   }
 }
+
+/**
+ * Asks for the first sift by energies once an ensemble without levels has got some: what stood in file order until then
+ * says nothing of populations. A failure never fails the act that brought them.
+ *
+ * @param brought ids of the columns that were brought
+ */
+export async function siftAfterLevels(
+  at: Grant & { ensembleId: string },
+  brought: readonly string[],
+): Promise<void> {
+  const levels = await db
+    .select({ id: columns.id })
+    .from(columns)
+    .where(and(eq(columns.ensembleId, at.ensembleId), eq(columns.kind, "energy")));
+  if (levels.length === 0 || levels.some(({ id }) => !brought.includes(id))) return;
+  await siftAfterIntake(at);
+}
