@@ -23,6 +23,7 @@ import {
   plural,
   pluralWord,
   rawValue,
+  readNumber,
   readTyped,
   signed,
   trimmed,
@@ -92,6 +93,31 @@ describe("numbers", () => {
     expect(readTyped(".5")).toBe(0.5);
     for (const text of ["", "1,234", "5x", "0x10", "nan", "1.2.3", "--1", "1e999"])
       expect(readTyped(text)).toBeNull();
+  });
+
+  it("read a decimal comma where it can mean nothing else, and say so where it can", () => {
+    expect(readTyped("310,5")).toBe(310.5);
+    expect(readTyped("0,3")).toBe(0.3);
+    expect(readTyped("0,300")).toBe(0.3);
+    expect(readTyped("\u22121234,567")).toBe(-1234.567);
+    for (const text of ["1,234", "-1,234", "1,234,567", "1.234,5", "1,234.5", ","])
+      expect(readTyped(text)).toBeNull();
+    expect(readNumber("1,234")).toMatchObject({ fault: expect.stringContaining("use a point") });
+    expect(readNumber("1,234.5")).toMatchObject({ fault: expect.stringContaining("use one point") });
+  });
+
+  it("read the field's own unit behind a number, and name another one", () => {
+    expect(readTyped("298.15 K", "K")).toBe(298.15);
+    expect(readTyped("298,15\u00a0k", "K")).toBe(298.15);
+    expect(readTyped("0.3 A", "Å")).toBe(0.3);
+    expect(readTyped("3 kcal/mol", "kcal/mol")).toBe(3);
+    expect(readTyped("1e3 K", "K")).toBe(1000);
+    expect(readNumber("25 °C", "K")).toEqual({
+      value: null,
+      fault: "“25 °C” ends in “°C”: a number in K is read here.",
+    });
+    expect(readTyped("12 kJ/mol", "kcal/mol")).toBeNull();
+    expect(readTyped("298.15 K")).toBeNull();
   });
 });
 

@@ -287,13 +287,60 @@ export function depthStep(fraction: number): 1 | 2 | 3 | 4 | 5 | 6 | 7 {
   return fraction >= 0.01 ? 2 : 1;
 }
 
+/** Spellings of a unit that keyboards offer. */
+const UNIT_SPELLINGS: Readonly<Record<string, readonly string[]>> = {
+  Å: ["å", "a", "angstrom", "ångström"],
+  "kcal/mol": ["kcal/mol", "kcal\u00b7mol-1", "kcal"],
+  K: ["k", "kelvin"],
+};
+
+/** "1,234" may mean either of two numbers; "310,5", "0,300" and "1234,567" mean one. */
+const ONE_COMMA = /^[+-]?\d*,\d+([eE][+-]?\d+)?$/;
+const GROUPED = /^[+-]?[1-9]\d{0,2},\d{3}([eE]|$)/;
+
 /**
- * What a person typed into a number field, or null where it is no number. The whole text must be one: no `parseFloat`.
- * U+2212 and spaces of any kind are read; a comma is not, since it may mean either of two things.
+ * What a person typed into a number field. The whole text must be a number: no `parseFloat`. U+2212, spaces of any kind, a
+ * decimal comma where it can mean nothing else, and the field's own unit behind the number are read.
+ *
+ * @param unit of the field; another one is refused
+ * @returns the number, or null and, where it can be told, what was wrong with the text
+ * @example readNumber("298,15 K", "K") // { value: 298.15 }; readNumber("1,234").fault // "The comma in 1,234 …"
  */
-export function readTyped(text: string): number | null {
-  const plain = text.replace(/[\s\u00a0\u202f]/g, "").replaceAll(MINUS, "-");
-  if (!/^[+-]?(\d+(\.\d*)?|\.\d+)([eE][+-]?\d+)?$/.test(plain)) return null;
+export function readNumber(
+  text: string,
+  unit?: string,
+): { value: number } | { value: null; fault: string | null } {
+  const whole = text.replace(/[\s\u00a0\u202f]/g, "").replaceAll(MINUS, "-");
+  const [, figures = "", behind = ""] = /^([+-]?[\d.,]*\d[.,]?(?:[eE][+-]?\d+)?)(\D.*)?$/.exec(whole) ?? [];
+  const shown = text.trim();
+  if (figures === "") return { value: null, fault: null };
+  if (behind !== "" && !isUnit(behind, unit)) {
+    const ours = unit === undefined ? "a number alone" : `a number in ${unit}`;
+    return {
+      value: null,
+      fault: /^[+-]?[\d.,]/.test(behind) ? null : `“${shown}” ends in “${behind}”: ${ours} is read here.`,
+    };
+  }
+  if (GROUPED.test(figures))
+    return {
+      value: null,
+      fault: `The comma in “${shown}” may part thousands or decimals: use a point, or no comma.`,
+    };
+  const plain = ONE_COMMA.test(figures) ? figures.replace(",", ".") : figures;
+  if (plain.includes(","))
+    return { value: null, fault: `“${shown}” holds more than a decimal sign: use one point.` };
+  if (!/^[+-]?(\d+(\.\d*)?|\.\d+)([eE][+-]?\d+)?$/.test(plain)) return { value: null, fault: null };
   const value = Number(plain);
-  return Number.isFinite(value) ? value : null;
+  return Number.isFinite(value) ? { value } : { value: null, fault: null };
+}
+
+function isUnit(text: string, unit: string | undefined): boolean {
+  if (unit === undefined) return false;
+  const typed = text.toLowerCase();
+  return typed === unit.toLowerCase() || (UNIT_SPELLINGS[unit]?.includes(typed) ?? false);
+}
+
+/** As `readNumber`, for those who say themselves what would be right. */
+export function readTyped(text: string, unit?: string): number | null {
+  return readNumber(text, unit).value;
 }

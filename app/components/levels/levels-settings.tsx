@@ -23,7 +23,7 @@ export function LevelsSettings({
   reference: LevelData;
   found: Comparison | null;
 }) {
-  const { state, change, temperatureK, slideTemperature, result, ensemble } = useWorkbench();
+  const { state, change, temperatureK, slideTemperature, setTemperature, result, ensemble } = useWorkbench();
   const { compare } = state;
   const set = (part: Partial<CompareState>, gradual = false) =>
     change({ compare: { ...compare, ...part } }, { gradual });
@@ -120,10 +120,7 @@ export function LevelsSettings({
         write={formatTemperature}
         wrong={`A temperature from ${TEMPERATURE_RANGE_K[0]} to ${TEMPERATURE_RANGE_K[1]} K, for example 298.15.`}
         onChange={slideTemperature}
-        onCommit={(value) => {
-          slideTemperature(null);
-          change({ temperatureK: value }, { gradual: true });
-        }}
+        onCommit={setTemperature}
       />
       <NumberField
         label="Share to keep"

@@ -168,7 +168,7 @@ function read(from: HoursSource["from"], rule: string, text: string, exponent: s
   const words = text.trim().split(/[\s;]+/);
   const made = {
     typed: { from: "typed", hours: readTyped(text) },
-    timings: { from: "timings", hours: words.map(readTyped) },
+    timings: { from: "timings", hours: words.map((text) => readTyped(text)) },
     scaled: {
       from: "scaled",
       timings: words.map((pair) => {

@@ -1,5 +1,5 @@
-import { type KeyboardEvent, useState } from "react";
-import { readTyped } from "~/lib/format";
+import { type KeyboardEvent, useLayoutEffect, useRef, useState } from "react";
+import { readNumber, readTyped } from "~/lib/format";
 import { Field, type FieldNotes, frameClass, useFieldIds } from "./field";
 
 export interface NumberRange {
@@ -33,52 +33,64 @@ export interface NumberFieldProps extends FieldNotes, NumberRange {
   bare?: { id: string; describedBy: string | undefined; onError: (text: string | null) => void };
 }
 
-/** A typed number with its unit. Arrow keys move it one step, page keys ten; a slip stays in the field with what would be right. */
+/** What is being typed over a value; once another value comes from elsewhere it is of no more use. */
+interface Draft {
+  text: string;
+  over: number | null;
+  fault: string | null;
+}
+
+/**
+ * A typed number with its unit. Arrow keys move it one step, page keys ten; a slip stays in the field with what would be
+ * right, until it is put right or the value is set from elsewhere. Coming in marks the whole number, so that typing
+ * replaces it.
+ */
 export function NumberField(props: NumberFieldProps) {
   const { label, aside, help, hideLabel, className, value, bare } = props;
-  const [draft, setDraft] = useState<string | null>(null);
-  const [wrong, setWrong] = useState(false);
-  const error = wrong ? props.wrong : props.error;
+  const [typed, setTyped] = useState<Draft | null>(null);
+  const draft = typed !== null && typed.over === value ? typed : null;
+  const fault = draft?.fault ?? null;
+  const error = fault ?? props.error;
   const ids = useFieldIds(bare?.id, { help, error });
+  const input = useMarkedOnEntry(draft === null ? value : null);
 
+  const clear = () => {
+    setTyped(null);
+    bare?.onError(null);
+  };
   const settle = (text: string) => {
-    const typed = readTyped(text);
+    const read = readNumber(text, props.unit);
     const emptied = props.optional && text.trim() === "";
-    if (!emptied && (typed === null || !inRange(typed, props))) {
-      setWrong(true);
-      bare?.onError(props.wrong);
+    if (!emptied && (read.value === null || !inRange(read.value, props))) {
+      const said = [read.value === null ? read.fault : null, props.wrong].filter(Boolean).join(" ");
+      setTyped({ text, over: value, fault: said });
+      bare?.onError(said);
       return;
     }
-    setWrong(false);
-    bare?.onError(null);
-    setDraft(null);
-    const next = emptied ? null : typed;
+    clear();
+    const next = emptied ? null : read.value;
     if (next !== value) props.onCommit(next);
   };
 
   const onKeyDown = (event: KeyboardEvent<HTMLInputElement>) => {
     if (event.key === "Enter" && draft !== null) {
       event.preventDefault();
-      settle(draft);
+      settle(draft.text);
       return;
     }
     if (event.key === "Escape" && draft !== null) {
       event.stopPropagation();
-      setDraft(null);
-      setWrong(false);
-      bare?.onError(null);
+      clear();
       return;
     }
     const steps = { ArrowUp: 1, ArrowDown: -1, PageUp: 10, PageDown: -10 }[event.key];
-    const from = draft === null ? value : readTyped(draft);
+    const from = draft === null ? value : readTyped(draft.text, props.unit);
     if (steps === undefined || props.step === undefined || from === null) return;
     event.preventDefault();
     // Rounded to the step's own decimals: 0.25 + 0.01 is 0.26, not 0.26000000000000001.
     const next = Number((from + steps * props.step).toFixed(10));
     if (inRange(next, props)) {
-      setDraft(null);
-      setWrong(false);
-      bare?.onError(null);
+      clear();
       props.onCommit(next);
     }
   };
@@ -98,9 +110,10 @@ export function NumberField(props: NumberFieldProps) {
         aria-invalid={error ? true : undefined}
         aria-describedby={bare?.describedBy ?? ids.describedBy}
         className={`h-full min-w-0 flex-1 bg-transparent text-ink outline-none ${bare ? "text-right" : ""}`}
-        value={draft ?? (value === null ? "" : props.write(value))}
-        onChange={(event) => setDraft(event.currentTarget.value)}
-        onBlur={() => draft !== null && settle(draft)}
+        value={draft?.text ?? (value === null ? "" : props.write(value))}
+        onChange={(event) => setTyped({ text: event.currentTarget.value, over: value, fault })}
+        onBlur={() => draft !== null && settle(draft.text)}
+        {...input}
         onKeyDown={onKeyDown}
       />
       {props.unit ? <span className="whitespace-nowrap text-ink-3">{props.unit}</span> : null}
@@ -108,4 +121,28 @@ export function NumberField(props: NumberFieldProps) {
   );
   if (bare) return control;
   return <Field {...{ id: ids.id, label, aside, help, error, hideLabel, className }}>{control}</Field>;
+}
+
+/**
+ * Marks the whole text when the field is entered, and again when the value in it changes under the cursor. A click that
+ * drags marks what it drags over.
+ */
+function useMarkedOnEntry(value: number | null) {
+  const ref = useRef<HTMLInputElement>(null);
+  const entered = useRef(false);
+  useLayoutEffect(() => {
+    if (value !== null && ref.current === document.activeElement) ref.current?.select();
+  }, [value]);
+  return {
+    ref,
+    onFocus: () => ref.current?.select(),
+    onPointerDown: () => {
+      entered.current = ref.current !== document.activeElement;
+    },
+    onPointerUp: () => {
+      const field = ref.current;
+      if (entered.current && field && field.selectionStart === field.selectionEnd) field.select();
+      entered.current = false;
+    },
+  };
 }

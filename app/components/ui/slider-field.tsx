@@ -48,7 +48,9 @@ export function SliderField({
   className?: string;
 }) {
   const id = useId();
-  const [error, setError] = useState<string | null>(null);
+  const [slip, setSlip] = useState<{ text: string; over: number } | null>(null);
+  // A slip belongs to the value that it was typed over: set from elsewhere, nothing is wrong any more.
+  const error = slip !== null && slip.over === value ? slip.text : null;
   // What the last movement ended at: pointer, key and blur events must not commit the same value twice.
   const moved = useRef<number | null>(null);
   const shown = Math.min(max, Math.max(min, value));
@@ -58,7 +60,7 @@ export function SliderField({
   const move = (next: number) => {
     const inside = Math.min(max, Math.max(min, Number(next.toFixed(10))));
     if (above && inside <= min) return;
-    setError(null);
+    setSlip(null);
     moved.current = inside;
     onChange(inside);
   };
@@ -137,7 +139,11 @@ export function SliderField({
           name={name}
           disabled={disabled}
           className={`flex-none ${fieldClass}`}
-          bare={{ id: `${id}-typed`, describedBy: describedBy || undefined, onError: setError }}
+          bare={{
+            id: `${id}-typed`,
+            describedBy: describedBy || undefined,
+            onError: (text) => setSlip(text === null ? null : { text, over: value }),
+          }}
         />
       </div>
     </Field>

@@ -10,7 +10,8 @@ import { useWorkbench } from "./workbench-context";
 
 /** Level, temperature, window and weights: all answered in the browser, at once. */
 export function PopulationSettings() {
-  const { level, state, change, temperatureK, slideTemperature, populations } = useWorkbench();
+  const { level, state, change, temperatureK, slideTemperature, setTemperature, populations } =
+    useWorkbench();
   const taken = populations?.weights.kind ?? "copies";
   const settingsWords = `${[
     level ? `Level ${level.name}` : "No level",
@@ -42,12 +43,7 @@ export function PopulationSettings() {
         write={formatTemperature}
         wrong={`A temperature from ${TEMPERATURE_RANGE_K[0]} to ${TEMPERATURE_RANGE_K[1]} K, for example 298.15.`}
         onChange={slideTemperature}
-        onCommit={(value) => {
-          // What was slid to stands until the address says it too.
-          void change({ temperatureK: value }, { gradual: true }).then(() =>
-            slideTemperature((slid) => (slid === value ? null : slid)),
-          );
-        }}
+        onCommit={setTemperature}
       />
       <NumberField
         label="Energy window"

@@ -1,17 +1,8 @@
-import {
-  createContext,
-  type Dispatch,
-  type ReactNode,
-  type SetStateAction,
-  useCallback,
-  useContext,
-  useDeferredValue,
-  useMemo,
-  useState,
-} from "react";
+import { createContext, type ReactNode, useCallback, useContext, useDeferredValue, useMemo } from "react";
 import { type ChangeState, useAddressState } from "~/hooks/use-address-state";
 import { type Coordinates, useCoordinates } from "~/hooks/use-coordinates";
 import { type DistanceColumn, useDistances } from "~/hooks/use-distances";
+import { useHeld } from "~/hooks/use-held";
 import type { SiftResult } from "~/lib/recipe/result";
 import { type DistinctPopulations, distinctPopulations } from "~/lib/thermo/populations";
 import type { WorkbenchState } from "~/lib/url-state";
@@ -39,7 +30,9 @@ export interface Workbench {
   change: ChangeState;
   /** Follows the slider before the address does. */
   temperatureK: number;
-  slideTemperature: Dispatch<SetStateAction<number | null>>;
+  slideTemperature: (temperatureK: number) => void;
+  /** Writes it to the address; until that has followed it stands all the same. */
+  setTemperature: (temperatureK: number) => void;
   populations: DistinctPopulations | null;
   rows: readonly ConformerRow[];
   roles: ReadonlyMap<number, FrameRole>;
@@ -89,8 +82,15 @@ export function WorkbenchProvider({
   children: ReactNode;
 }) {
   const [state, change] = useAddressState();
-  const [sliding, setSliding] = useState<number | null>(null);
-  const temperatureK = sliding ?? state.temperatureK;
+  const { shown: temperatureK, hold: slideTemperature, sent } = useHeld(state.temperatureK);
+  const setTemperature = useCallback(
+    (next: number) => {
+      slideTemperature(next);
+      sent(next);
+      void change({ temperatureK: next }, { gradual: true });
+    },
+    [slideTemperature, sent, change],
+  );
   const result = sift?.result ?? null;
   const level = ensemble.levels.find((one) => one.id === sift?.recipe.level) ?? null;
   const energyKind = level?.energyKind ?? "electronic";
@@ -137,7 +137,8 @@ export function WorkbenchProvider({
       state,
       change,
       temperatureK,
-      slideTemperature: setSliding,
+      slideTemperature,
+      setTemperature,
       populations,
       rows,
       roles,
@@ -158,6 +159,8 @@ export function WorkbenchProvider({
       state,
       change,
       temperatureK,
+      slideTemperature,
+      setTemperature,
       populations,
       rows,
       roles,
