@@ -153,9 +153,14 @@ export function StepsTable({
               <b>{outcome ? costFigure(plan, outcome) : ABSENT}</b>
             </Td>
             <Td align="right" wrap>
-              {outcome
-                ? `${formatPopulation(outcome.kept.low)} to ${formatPopulation(outcome.kept.high)}`
-                : ABSENT}
+              {outcome ? (
+                <>
+                  <span className="whitespace-nowrap">{formatPopulation(outcome.kept.low)} to</span>{" "}
+                  {formatPopulation(outcome.kept.high)}
+                </>
+              ) : (
+                ABSENT
+              )}
             </Td>
           </tr>
         </tbody>
