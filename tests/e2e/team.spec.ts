@@ -203,6 +203,8 @@ test.describe("the table of ensembles", () => {
   });
 
   test("is accessible by day and by night, and as narrow as a phone", async ({ page }) => {
+    // A long table by now, looked at four times.
+    test.slow();
     await signIn(page, "owner");
     await hydrated(page);
     await expectAccessibleEverywhere(page, "the table");

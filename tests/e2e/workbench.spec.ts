@@ -186,6 +186,8 @@ for (const [width, scheme] of [
   test(`every section is accessible at ${width} px by ${scheme === "light" ? "day" : "night"}`, async ({
     page,
   }) => {
+    // Five sections, each looked at once.
+    test.slow();
     await page.setViewportSize({ width, height: 900 });
     await page.emulateMedia({ colorScheme: scheme });
     await openDemo(page, "N-Acetyl-L-alanine N-methylamide", "intake");
