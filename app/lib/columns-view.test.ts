@@ -29,9 +29,17 @@ describe("a property that may be a level", () => {
   });
 
   it("looks like one by unit or name, and other numbers do not", () => {
-    const like = ["UFF_ENERGY_KCAL_MOL", "energy", "E_mp2", "G_298", "free energy", "total_energy"];
+    const like = ["UFF_ENERGY_KCAL_MOL", "energy", "E_mp2", "G_298", "free energy", "total_energy", "H_298"];
     expect(like.filter((name) => !looksLikeLevel(column(name)))).toEqual([]);
-    const not = ["dipole", "CONFORMER_NUMBER", "radius of gyration", "logP", "rmsd", "temperature"];
+    const not = [
+      "dipole",
+      "CONFORMER_NUMBER",
+      "radius of gyration",
+      "logP",
+      "rmsd",
+      "temperature",
+      "H_bonds",
+    ];
     expect(not.filter((name) => looksLikeLevel(column(name)))).toEqual([]);
     expect(looksLikeLevel(column("strain", "kJ/mol"))).toBe(true);
     expect(looksLikeLevel(column("nu1", "cm-1"))).toBe(false);

@@ -112,7 +112,7 @@ export function proposedEnergyUnit({ name, unit }: Pick<MaybeLevel, "name" | "un
   return own ?? readHeader(name).unit?.energy ?? null;
 }
 
-const ENERGY_WORDS = /(^|[^a-z])(energy|energies|enthalpy|e_?tot|escf|[eghu]_[a-z0-9]+)([^a-z]|$)/i;
+const ENERGY_WORDS = /(^|[^a-z])(energy|energies|enthalpy|e_?tot|escf|[eg]_[a-z0-9]+|[hu]_\d+)([^a-z]|$)/i;
 
 /** Whether a property is probably a level that nobody has called so: its unit or its name speaks of energies. */
 export function looksLikeLevel(column: MaybeLevel): boolean {
