@@ -17,6 +17,8 @@ export interface CommentNumber {
   readonly unit: EnergyUnit | null;
   /** The word behind it, whatever it means; empty where none is. */
   readonly next: string;
+  /** Its key is given a value twice, by "=": the last one counts (row X33). */
+  readonly repeated: boolean;
   /** One of several in brackets or quotes: never an energy of the frame. */
   readonly inArray: boolean;
 }
@@ -49,6 +51,7 @@ export function scanComment(comment: string): ScannedComment {
   const tokens = tokenise(plainBlanksAndMinus(comment));
   const numbers: CommentNumber[] = [];
   const keyed = new Map<string, KeyedText>();
+  const twice = assignedTwice(tokens);
   let words: string[] = [];
   tokens.forEach((token, at) => {
     if (token.kind === "sign") return;
@@ -57,6 +60,7 @@ export function scanComment(comment: string): ScannedComment {
       key,
       words: key === null ? words : words.slice(0, -1),
       behind: wordsBehind(tokens, at),
+      repeated: key !== null && twice.has(key),
     };
     const found = numbersOf(token, numbers.length, context);
     // One by one: an array in a comment may be longer than a call takes arguments.
@@ -65,6 +69,20 @@ export function scanComment(comment: string): ScannedComment {
     words = found.length > 0 ? [] : [...words.slice(-4), token.text];
   });
   return { numbers, keyed, bare: tokens.length === 1 && numbers.length === 1 };
+}
+
+/** Keys that stand before "=" more than once. */
+function assignedTwice(tokens: readonly Token[]): ReadonlySet<string> {
+  const seen = new Set<string>();
+  const twice = new Set<string>();
+  for (let at = 2; at < tokens.length; at++) {
+    if (tokens[at - 1]!.text !== "=" || tokens[at - 1]!.kind !== "sign") continue;
+    const key = keyBefore(tokens, at);
+    if (key === null) continue;
+    if (seen.has(key)) twice.add(key);
+    seen.add(key);
+  }
+  return twice;
 }
 
 function tokenise(text: string): Token[] {
@@ -175,6 +193,7 @@ interface Context {
   readonly key: string | null;
   readonly words: readonly string[];
   readonly behind: readonly string[];
+  readonly repeated: boolean;
 }
 
 function numbersOf(token: Token, before: number, context: Context): CommentNumber[] {
@@ -193,6 +212,7 @@ function numbersOf(token: Token, before: number, context: Context): CommentNumbe
     words: context.words,
     unit: piece.unit ?? unit,
     next: first,
+    repeated: context.repeated,
     inArray: pieces.length > 1,
   }));
 }

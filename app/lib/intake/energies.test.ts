@@ -110,6 +110,28 @@ describe("several energies are asked, with a proposal", () => {
   });
 });
 
+describe("of a key that stands twice the last value counts (X33)", () => {
+  const doubled = frames("energy=0.5 energy=@");
+
+  test("and the one before is no choice", () => {
+    const { verdict, chosen, candidates } = scan(doubled);
+    expect(verdict).toBe("lone");
+    expect(candidates.map(({ from }) => from)).toEqual(["key:energy"]);
+    expect([...(chosen?.column.values ?? [])]).toEqual([-1.25, -1.1, -0.75]);
+  });
+
+  test("be it in some frames only", () => {
+    const mixed = scan([...frames("energy=@"), ...doubled, "energy=-2.5"]);
+    expect(mixed.verdict).toBe("lone");
+    expect(mixed.chosen?.from).toBe("key:energy");
+    expect([...(mixed.chosen?.column.values ?? [])]).toEqual([-1.25, -1.1, -0.75, -1.25, -1.1, -0.75, -2.5]);
+  });
+
+  test("unless a place is named", () => {
+    expect([...(scan(doubled, "number:1").chosen?.column.values ?? [])]).toEqual([0.5, 0.5, 0.5]);
+  });
+});
+
 describe("the rule that names the number", () => {
   test("takes whole words only, exact in case", () => {
     const comment = "time = 5500 energy=-1.5 Energy=-2.5 E(RHF)=-3.5";

@@ -192,7 +192,9 @@ export class EnergyScan {
     const owned = new Set(keys.filter(([, track]) => this.#owns(track)).map(([, track]) => track.position));
     const found = keys.map(([key, track]) => make(`key:${key}`, key, track));
     for (const [position, track] of this.#positions) {
-      if (!owned.has(position)) found.push(make(`number:${position}`, null, track));
+      // Numbers of a key that stands twice are followed by the key: its last one counts, the others are no choice.
+      if (!owned.has(position) && track.repeated * 2 <= track.seen)
+        found.push(make(`number:${position}`, null, track));
     }
     for (const [name, track] of this.#fields) found.push(make(`field:${name}`, name, track));
     const candidates = found.filter((candidate) => candidate.count > 0).sort(byLikelihood);

@@ -20,6 +20,8 @@ export class Track {
   seen = 0;
   relative = 0;
   customary = 0;
+  /** Times that its key stood twice. */
+  repeated = 0;
 
   constructor(position: number) {
     this.position = position;
@@ -37,7 +39,9 @@ export class Track {
   put(row: number, number: CommentNumber, comment: ScannedComment, extended: boolean): void {
     const { text, value } = number;
     this.values.set(row, value === null ? { problem: text } : { text, value });
-    this.position = number.position;
+    // Where the key stands twice, its place is that of the frames where it stands once.
+    if (number.repeated) this.repeated += 1;
+    if (!number.repeated || this.position === 0) this.position = number.position;
     this.seen += 1;
     const kind = classify(number);
     this.classes.set(kind, (this.classes.get(kind) ?? 0) + 1);

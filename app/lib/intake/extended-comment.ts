@@ -16,6 +16,8 @@ export interface ExtendedComment {
   readonly keys: ReadonlyMap<string, ExtendedEntry>;
   /** The first key of each oddity. */
   readonly oddities: ReadonlyMap<CommentOddity, string>;
+  /** The first key that is given a value twice: in plain text too, where a word may well stand twice. */
+  readonly assignedTwice: string | null;
 }
 
 /** Column (from 1) and reason where a comment does not parse. */
@@ -37,6 +39,7 @@ const isBlank = (code: number) => code === 32 || code === 9 || code === 11 || co
 export function parseExtendedComment(comment: string): ExtendedComment | { fault: CommentFault } {
   const keys = new Map<string, ExtendedEntry>();
   const oddities = new Map<CommentOddity, string>();
+  let assignedTwice: string | null = null;
   const note = (oddity: CommentOddity, key: string) => {
     if (!oddities.has(oddity)) oddities.set(oddity, key);
   };
@@ -57,10 +60,17 @@ export function parseExtendedComment(comment: string): ExtendedComment | { fault
       entry = { text: value.text, value: typed(value) };
       at = skipBlanks(comment, value.end);
     } else note("bare-key", key.text);
-    if (keys.has(key.text)) note("key-twice", key.text);
+    const before = keys.get(key.text);
+    if (before) note("key-twice", key.text);
+    if (before && hasValue(before) && hasValue(entry)) assignedTwice ??= key.text;
     keys.set(key.text, entry);
   }
-  return { keys, oddities };
+  return { keys, oddities, assignedTwice };
+}
+
+/** Whether a key stands with a value, not as a bare word. */
+export function hasValue({ text, value }: ExtendedEntry): boolean {
+  return text !== "" || value !== true;
 }
 
 type Style = "bare" | "quoted" | "single" | "square" | "curly";

@@ -26,7 +26,7 @@ export function scanFields(fields: SdfFields): ScannedComment {
     const text = oneText(values);
     if (name === "" || text === "") continue;
     const read = readFieldNumber(text);
-    const number = read && { position, key: name, words: [], inArray: false, ...read };
+    const number = read && { position, key: name, words: [], repeated: false, inArray: false, ...read };
     if (number) numbers.push(number);
     keyed.set(name, { text: text.slice(0, KEPT), number });
   }

@@ -2,6 +2,7 @@ import {
   type CommentOddity,
   type ExtendedEntry,
   hasProperties,
+  hasValue,
   parseExtendedComment,
 } from "../intake/extended-comment.ts";
 import type { Ask, OpenReading, ReadingChoices } from "../intake/reading-choices.ts";
@@ -130,7 +131,8 @@ export class FrameBuilder implements PlainTarget {
     this.keys = parsed.keys;
     if (!this.extended) {
       // Words of plain text are no keys.
-      this.keys = new Map([...parsed.keys].filter(([, entry]) => entry.text !== "" || entry.value !== true));
+      this.keys = new Map([...parsed.keys].filter(([, entry]) => hasValue(entry)));
+      if (parsed.assignedTwice !== null) this.oddities = new Map([["key-twice", parsed.assignedTwice]]);
       return;
     }
     this.oddities = parsed.oddities;
