@@ -1,7 +1,16 @@
 import { and, eq, isNotNull, isNull, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { isId } from "../../db/new-id.server.ts";
-import { editions, ensembles, links, members, sifts, teams, users } from "../../db/schema.server.ts";
+import {
+  apiTokens,
+  editions,
+  ensembles,
+  links,
+  members,
+  sifts,
+  teams,
+  users,
+} from "../../db/schema.server.ts";
 import type { DomainError } from "../../lib/errors.ts";
 import { forbidden, notFound } from "../http.server.ts";
 
@@ -84,6 +93,15 @@ function refusal(actor: Actor, verb: Verb): DomainError {
   return forbidden(`This token may only ${what}. ${REFUSALS[verb]}`);
 }
 
+/**
+ * True in SQL while a token lives. It was looked up when the call came; asked again here, so that one that is revoked or
+ * runs out in the middle of a long answer ends it as a lost role does.
+ */
+const tokenLives = (actor: Exclude<Actor, { kind: "anonymous" }>) =>
+  actor.kind === "token"
+    ? sql`exists (select 1 from ${apiTokens} where ${apiTokens.id} = ${actor.tokenId} and ${apiTokens.revokedAt} is null and (${apiTokens.endsAt} is null or ${apiTokens.endsAt} > utc_timestamp(3)))`
+    : undefined;
+
 /** The role the actor has in a team right now; null without one. Roles are looked up on every call. */
 async function roleIn(actor: Actor, teamId: string): Promise<MemberRole | null> {
   if (actor.kind === "anonymous") return null;
@@ -93,7 +111,7 @@ async function roleIn(actor: Actor, teamId: string): Promise<MemberRole | null> 
     .from(members)
     .innerJoin(users, and(eq(users.id, members.userId), isNull(users.disabledAt)))
     .innerJoin(teams, and(eq(teams.id, members.teamId), isNull(teams.deletedAt)))
-    .where(and(eq(members.teamId, teamId), eq(members.userId, actor.userId)))
+    .where(and(eq(members.teamId, teamId), eq(members.userId, actor.userId), tokenLives(actor)))
     .limit(1);
   return rows[0]?.role ?? null;
 }
@@ -173,6 +191,7 @@ const membership = (actor: Exclude<Actor, { kind: "anonymous" }>) =>
     eq(members.teamId, ensembles.teamId),
     eq(members.userId, actor.userId),
     sql`exists (select 1 from ${users} where ${users.id} = ${members.userId} and ${users.disabledAt} is null)`,
+    tokenLives(actor),
   );
 
 function decide(actor: Actor, verb: Verb, found: Found | undefined): Grant & { ensembleId: string } {

@@ -4,10 +4,13 @@ import { eq } from "drizzle-orm";
 import { describe, expect, it, vi } from "vitest";
 import { db } from "~/db/client.server";
 import { newId } from "~/db/new-id.server";
-import { jobs, members } from "~/db/schema.server";
+import { apiTokens, jobs, members } from "~/db/schema.server";
+import { accessEnsemble, accessTeam } from "~/services/auth/access.server";
+import { findToken } from "~/services/auth/find-token.server";
 import * as health from "~/services/health.server";
 import { whileAllowed } from "~/services/while-allowed";
 import { makeTeam } from "../../factories/people";
+import { makeEnsembleRow } from "../../factories/rows";
 import { makeLab } from "../../factories/upload";
 import { call, routeRows } from "../../setup/app";
 
@@ -113,6 +116,32 @@ describe("a download that runs", () => {
       }
     };
     await expect(rest()).rejects.toMatchObject({ code: "not-found" });
+  });
+
+  it.each([
+    ["revoked", { revokedAt: new Date() }],
+    ["past its end", { endsAt: new Date(Date.now() - 1000) }],
+  ])("of a token breaks off once the token is %s (C05, D07)", async (_, change) => {
+    const lab = await makeLab();
+    const ensembleId = await makeEnsembleRow(lab.team.id);
+    const actor = await findToken(lab.token);
+    if (actor === null) throw new Error("no token");
+    async function* pieces() {
+      for (let k = 0; k < 4; k++) yield k;
+    }
+    const got: number[] = [];
+    const taking = async (ask: () => Promise<unknown>) => {
+      for await (const piece of whileAllowed(pieces(), ask)) {
+        got.push(piece);
+        if (piece === 1) await db.update(apiTokens).set(change).where(eq(apiTokens.id, actor.tokenId));
+      }
+    };
+    const read = taking(() => accessEnsemble(actor, "read", ensembleId));
+    await expect(read).rejects.toMatchObject({ code: "not-found" });
+    expect(got).toEqual([0, 1]);
+    await expect(accessTeam(actor, "read", lab.team.id)).rejects.toMatchObject({ code: "not-found" });
+    // The call after it is that of no token.
+    expect((await call("/api/v1/ensembles", { token: lab.token })).status).toBe(401);
   });
 
   it("is asked about before every piece but the first", async () => {
