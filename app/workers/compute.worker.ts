@@ -1,12 +1,14 @@
 import { PairMatrixWork, packedLength } from "../lib/align/pair-matrix.ts";
 import { makePlan } from "../lib/align/plan.ts";
 import { averageErrorsOf } from "../lib/averages/property-set.ts";
+import { drawUncertainty } from "../lib/edition/uncertainty.ts";
 import { matchFrames } from "../lib/levels/match-frames.ts";
 import { runSift, SiftCancelled } from "../lib/recipe/run.ts";
 import { makeGraph } from "../lib/structure.ts";
 import {
   type AveragesAnswer,
   type ComputeTask,
+  type DrawAnswer,
   MATRIX_COUNTERS,
   type MatchAnswer,
   type MatchTask,
@@ -22,8 +24,9 @@ const PROGRESS_INTERVAL_MS = 100;
 /** Thread entry: one task in, one answer out. It computes and knows neither database nor network. */
 export default function compute(
   task: ComputeTask,
-): SiftAnswer | MatchAnswer | MatrixAnswer | AveragesAnswer {
+): SiftAnswer | MatchAnswer | MatrixAnswer | AveragesAnswer | DrawAnswer {
   if (task.kind === "match") return match(task);
+  if (task.kind === "draw") return { kind: "drawn", drawn: drawUncertainty(task.input) };
   if (task.kind === "averages") {
     return { kind: "averaged", ...averageErrorsOf(task.moments, task.weighed, task.error) };
   }

@@ -1,6 +1,7 @@
 import type { MessagePort } from "node:worker_threads";
 import type { Moments } from "../lib/averages/average.ts";
 import type { AverageError } from "../lib/averages/uncertainty.ts";
+import type { DrawnUncertainty, UncertaintyInput } from "../lib/edition/uncertainty.ts";
 import type { FrameMatches } from "../lib/levels/match-frames.ts";
 import type { SiftRecipe } from "../lib/recipe/recipe.ts";
 import type { SiftResult } from "../lib/recipe/result.ts";
@@ -78,7 +79,15 @@ export interface MatrixTask {
 /** Places in `MatrixTask.counters`: the next tile, pairs done, pairs whose work bound was met. */
 export const MATRIX_COUNTERS = { nextTile: 0, pairs: 1, inexact: 2 } as const;
 
-export type ComputeTask = SiftTask | MatchTask | MatrixTask | AveragesTask;
+/** The draws of an edition: plain data in, plain data out. */
+export interface DrawTask {
+  kind: "draw";
+  input: UncertaintyInput;
+}
+
+export type DrawAnswer = { kind: "drawn"; drawn: DrawnUncertainty };
+
+export type ComputeTask = SiftTask | MatchTask | MatrixTask | AveragesTask | DrawTask;
 
 /** Sent through the task's port, at most ten times a second. */
 export interface ProgressMessage {

@@ -3,13 +3,17 @@ import { and, eq, sql } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { driverCode } from "~/db/driver-errors.server";
-import { columns, editionFiles, editions, ensembles, logbook, verifications } from "~/db/schema.server";
+import { newId } from "~/db/new-id.server";
+import { columns, editionFiles, editions, ensembles, jobs, logbook, verifications } from "~/db/schema.server";
 import { canonicalJson } from "~/lib/edition/canonical-json";
+import { askToVerify } from "~/services/editions/ask-to-verify.server";
+import { lastVerification } from "~/services/editions/find-edition.server";
 import { loadHandOver } from "~/services/editions/load-hand-over.server";
 import { openEditionFile } from "~/services/editions/open-edition-file.server";
-import { verifyEdition } from "~/services/editions/verify-edition.server";
 import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
+import { waitForJob } from "~/services/jobs/wait-for-job.server";
 import { freeze, makeSifted, personOf } from "../factories/editions";
+import { freezeFirst } from "../factories/first-edition";
 import { makeMember, tokenOf } from "../factories/people";
 import { makeLab, sifted, withJobs } from "../factories/upload";
 import { call } from "../setup/app";
@@ -39,6 +43,23 @@ async function bytesOf(editionId: string, name: string): Promise<Buffer> {
   return Buffer.concat(chunks);
 }
 
+/** Recomputes an edition through the queue, and how it came out. */
+async function verify(made: { id: string; number: number }) {
+  const jobId = await askToVerify({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
+  await waitForJob(jobId, 60_000);
+  const [job] = await db.select().from(jobs).where(eq(jobs.id, jobId));
+  expect(job?.state, job?.error ?? "").toBe("done");
+  const last = await lastVerification(made.id);
+  if (last === null) throw new Error("no verification");
+  const files = last.files.filter(({ note }) => note === undefined);
+  return {
+    same: last.same,
+    files: files.length,
+    differing: files.filter(({ was, is }) => was !== is).map(({ name }) => name),
+    notes: last.files.flatMap(({ name, note }) => (note === undefined ? [] : [`${name}: ${note}`])),
+  };
+}
+
 describe("freezing", () => {
   it("keeps content, recipe, inputs and files under their checksums", async () => {
     const made = await freeze(actor(), at, { title: "First look", remark: "For the meeting" });
@@ -52,8 +73,15 @@ describe("freezing", () => {
       "distinct-set.xyz",
       "distinct-set.sdf",
       "results.csv",
+      "temperatures.csv",
+      "frames.csv",
       "results.json",
       "methods.txt",
+      "figure-shapes.svg",
+      "figure-energy-ladder.svg",
+      "figure-cumulative-population.svg",
+      "figure-population-ranges.svg",
+      "figure-temperatures.svg",
       "citation.bib",
       "CITATION.cff",
       "manifest.json",
@@ -158,28 +186,62 @@ describe("recompute and verify", () => {
     const made = await freeze(actor(), at, { title: "To verify" });
     await holdFrame({ actor: actor(), ensembleId: at.ensembleId, frame: 3, reason: "later decision" });
     await db.update(ensembles).set({ name: "Another name" }).where(eq(ensembles.id, at.ensembleId));
-    const answer = await verifyEdition({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
-    expect(answer.files.filter(({ was, is }) => was !== is)).toEqual([]);
-    expect(answer.same).toBe(true);
-    expect(answer.files).toHaveLength(8);
+    expect(await verify(made)).toEqual({ same: true, files: 15, differing: [], notes: [] });
     const [row] = await db.select().from(verifications).where(eq(verifications.editionId, made.id));
     expect(row?.same).toBe(true);
     await releaseFrame({ actor: actor(), ensembleId: at.ensembleId, frame: 3, reason: "back" });
   });
 
-  it("names the input that is another, and says that nothing could be made from it", async () => {
+  it("names a level whose numbers are others now, and recomputes from those that the edition keeps", async () => {
     const made = await freeze(actor(), at);
     const [column] = await db.select().from(columns).where(eq(columns.id, at.level));
     if (column === undefined) throw new Error("no column");
     const changed = Buffer.from(column.data);
     changed.writeDoubleLE(1234.5, 0);
     await db.update(columns).set({ data: changed }).where(eq(columns.id, at.level));
-    const answer = await verifyEdition({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
+    const answer = await verify(made);
     await db.update(columns).set({ data: column.data }).where(eq(columns.id, at.level));
+    expect(answer).toMatchObject({ same: true, differing: [] });
+    expect(answer.notes).toEqual([
+      "column MMFF94: The column holds other numbers now; those that the edition keeps were taken.",
+    ]);
+  });
+
+  it("is asked for once however often somebody presses", async () => {
+    const made = await freeze(actor(), at);
+    const ask = () => askToVerify({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
+    const asked = await Promise.all([ask(), ask(), ask()]);
+    expect(new Set(asked).size).toBe(1);
+    await waitForJob(asked[0] ?? "", 60_000);
+  });
+
+  it("says which file is not the one that was handed out", async () => {
+    const made = await freeze(actor(), at);
+    const row = await rowOf(made.id);
+    // A frozen one cannot be changed: a copy of it with another checksum of one file.
+    const id = newId();
+    const files = (row.files as { name: string; sha256: string }[]).map((file) =>
+      file.name === "results.csv" ? { ...file, sha256: "0".repeat(64) } : file,
+    );
+    await db.insert(editions).values({ ...row, id, number: 900, files });
+    const kept = await db.select().from(editionFiles).where(eq(editionFiles.editionId, made.id));
+    for (const file of kept) await db.insert(editionFiles).values({ ...file, editionId: id });
+    const answer = await verify({ id, number: 900 });
     expect(answer.same).toBe(false);
-    const named = answer.files.filter(({ was, is }) => was !== is && is !== null);
-    expect(named.map(({ name }) => name)).toEqual(["column MMFF94"]);
-    expect(answer.files.filter(({ is }) => is === null)).toHaveLength(8);
+    // Its number stands in citation and manifest, so they differ too.
+    expect(answer.differing).toEqual(["results.csv", "citation.bib", "CITATION.cff", "manifest.json"]);
+  });
+
+  it("still verifies editions of the first content, which keep no ranges", async () => {
+    const made = await freezeFirst(at, lab.team.id);
+    expect(await verify(made)).toEqual({ same: true, files: 8, differing: [], notes: [] });
+    const [column] = await db.select().from(columns).where(eq(columns.id, at.level));
+    if (column === undefined) throw new Error("no column");
+    await db.delete(columns).where(eq(columns.id, at.level));
+    const answer = await verify(made);
+    await db.insert(columns).values(column);
+    expect(answer).toMatchObject({ same: true, differing: [] });
+    expect(answer.notes.map((note) => note.split(":")[0])).toEqual(["column MMFF94", "sift"]);
   });
 });
 
@@ -201,22 +263,31 @@ describe("what an ensemble holds beside populations", () => {
     const made = await freeze(actor(), at);
     const content = JSON.parse((await rowOf(made.id)).content);
     expect(content.averages).toMatchObject([{ property: "dipole", unit: "D", rule: "linear" }]);
+    const { error, average } = content.averages[0];
+    expect(error.low).toBeLessThan(average);
+    expect(error.high).toBeGreaterThan(average);
+    expect(content.temperatures.kelvin).toEqual([253, 298.15, 323]);
+    expect(content.temperatures.averages[1][0]).toBe(average);
     expect(content.comparisons).toMatchObject([{ reference: "better" }]);
     expect(content.comparisons[0].n).toBeGreaterThan(3);
     expect(content.sampling.coverage).toBeGreaterThan(0);
     expect(content.words.methods).toContain("1 property was averaged");
     expect(content.words.methods).toContain("MMFF94 was compared with better");
     const csv = (await bytesOf(made.id, "averages.csv")).toString("utf8");
-    const own = await call(`/api/v1/sifts/${at.siftId}/averages.csv`, { token: lab.token });
+    const own = await call(`/api/v1/sifts/${at.siftId}/averages.csv?sigma=0.5`, { token: lab.token });
     expect(csv).toBe(await own.text());
     // A name and a rule that are set later do not touch what was frozen.
     await db
       .update(columns)
       .set({ rule: "rms", name: "mu" })
       .where(and(eq(columns.ensembleId, at.ensembleId), eq(columns.name, "dipole")));
-    const answer = await verifyEdition({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
-    expect(answer.files.filter(({ was, is }) => was !== is)).toEqual([]);
-    expect(answer.files).toHaveLength(9);
+    expect(await verify(made)).toEqual({ same: true, files: 16, differing: [], notes: [] });
+    // A column that is gone: the edition keeps its numbers.
+    const gone = and(eq(columns.ensembleId, at.ensembleId), eq(columns.name, "mu"));
+    await db.delete(columns).where(gone);
+    const answer = await verify(made);
+    expect(answer).toMatchObject({ same: true, differing: [] });
+    expect(answer.notes.join()).toContain("column dipole: The column is not there any more");
   });
 });
 

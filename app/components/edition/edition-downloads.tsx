@@ -1,9 +1,11 @@
-import { linkClass } from "~/components/ui/text-link";
+import { useState } from "react";
+import { linkClass, TextButton } from "~/components/ui/text-link";
 import { FILE_WORDS } from "~/lib/edition/edition-files";
 import type { EditionView } from "~/lib/edition/views";
 import { formatBytes, formatChecksum } from "~/lib/format";
 import type { EditionAddresses } from "./addresses";
 import { EditionHead } from "./edition-head";
+import { saveFigures } from "./save-figures";
 
 /** Files of an edition with their checksums, then the originals where they go along. */
 export function EditionDownloads({
@@ -14,13 +16,16 @@ export function EditionDownloads({
   addresses: EditionAddresses;
 }) {
   const packed = ["bundle.zip", "conformers.zip"];
+  const figures = edition.files.filter(({ name }) => name.endsWith(".svg"));
+  const others = edition.files.filter(({ name }) => !name.endsWith(".svg"));
   return (
     <section className="min-w-0" aria-labelledby="edition-files">
       <EditionHead id="edition-files">Files of this edition</EditionHead>
       <ul className="mt-3 border-t border-rule">
-        {edition.files.map(({ name, bytes, sha256 }) => (
+        {others.map(({ name, bytes, sha256 }) => (
           <Line key={name} name={name} to={addresses.file(name)} bytes={bytes} sha256={sha256} />
         ))}
+        {figures.length > 0 ? <Figures figures={figures} addresses={addresses} edition={edition} /> : null}
         {packed.map((name) => (
           <Line key={name} name={name} to={addresses.file(name)} bytes={null} sha256={null} />
         ))}
@@ -51,6 +56,69 @@ export function EditionDownloads({
         Lowlying {edition.version}; the same recipe gives the same digits.
       </p>
     </section>
+  );
+}
+
+/** All figures together, and each by itself: SVG as frozen, PNG drawn from it by the browser. */
+function Figures({
+  figures,
+  addresses,
+  edition,
+}: {
+  figures: EditionView["files"];
+  addresses: EditionAddresses;
+  edition: EditionView;
+}) {
+  const [state, setState] = useState<"ready" | "making" | "failed">("ready");
+  const make = async () => {
+    setState("making");
+    try {
+      await saveFigures({
+        figures: figures.map(({ name }) => ({ name, address: addresses.file(name) })),
+        called: `${edition.ensemble.name} edition ${edition.number} figures`,
+      });
+      setState("ready");
+    } catch {
+      setState("failed");
+    }
+  };
+  return (
+    <li className="keep figures border-b border-rule py-2">
+      <span className="flex flex-wrap items-baseline justify-between gap-x-4">
+        <a
+          className={linkClass}
+          href={addresses.file("figures.zip")}
+          download
+          aria-label="All figures, figures.zip"
+        >
+          All figures
+        </a>
+        <span className="text-ink-2">SVG, zip</span>
+      </span>
+      <span className="mt-1 flex flex-wrap gap-x-3 text-xs">
+        {figures.map(({ name }) => (
+          <a
+            key={name}
+            className={linkClass}
+            href={addresses.file(name)}
+            download
+            aria-label={FILE_WORDS[name]?.title ?? name}
+          >
+            {(FILE_WORDS[name]?.title ?? name).replace(/^Figure: /, "")}
+          </a>
+        ))}
+      </span>
+      <span className="with-script print:hidden mt-1 block text-xs">
+        <TextButton disabled={state === "making"} onClick={() => void make()}>
+          {state === "making" ? "Drawing" : "SVG and PNG together, zip"}
+        </TextButton>
+        {state === "failed" ? (
+          <span role="alert" className="ml-3 text-danger">
+            The figures could not be fetched. The link may have ended; try again.
+          </span>
+        ) : null}
+      </span>
+    </li>
   );
 }
 

@@ -21,6 +21,7 @@ import { EditionHead } from "./edition-head";
 import { PopulationTable } from "./population-table";
 import { Shapes } from "./shapes";
 import { StillPlots } from "./still-plots";
+import { TemperatureTable } from "./temperature-table";
 
 /** An edition for somebody who decides with it: what was found, how sure, by which method, and the files. */
 export function EditionReport({
@@ -45,6 +46,7 @@ export function EditionReport({
       </div>
       <Plots edition={edition} />
       <AveragesTable edition={edition} />
+      <TemperatureTable edition={edition} />
       <div className="mt-10 grid gap-x-12 gap-y-10 lg:grid-cols-2 print:grid-cols-1">
         <Method edition={edition} />
         <EditionDownloads edition={edition} addresses={addresses} />
@@ -113,23 +115,61 @@ function Strip({ edition }: { edition: EditionView }) {
   );
 }
 
-/** What limits the results; what is for somebody to settle stands first. */
+/** What limits the results; what nobody had settled when it was frozen stands first. */
 function HowSure({ edition }: { edition: EditionView }) {
-  const sorted = [...edition.findings].sort((a, b) => Number(b.kind === "open") - Number(a.kind === "open"));
+  const first = edition.findings.filter(({ kind }) => kind === "open");
+  const open = [...edition.open, ...first];
+  const know = edition.findings.filter(({ kind }) => kind === "know");
   return (
-    <section aria-labelledby="edition-sure">
+    <section aria-labelledby="edition-sure" className="min-w-0">
       <EditionHead id="edition-sure">How sure</EditionHead>
-      <ul className="mt-3 border-t border-rule">
-        {sorted.map((finding) => (
-          <li
-            key={finding.title}
-            className={`keep figures border-b border-rule py-3 ${finding.kind === "open" ? "border-l-3 border-l-mark pl-4" : ""}`}
-          >
-            <strong className="font-semibold">{finding.title}</strong> {finding.text}
-          </li>
-        ))}
-      </ul>
+      {open.length > 0 ? (
+        <>
+          <h3 className="mt-3 text-sm font-semibold text-mark">Open when it was frozen</h3>
+          <FindingList findings={open} open />
+          {know.length > 0 ? <h3 className="mt-5 text-sm font-semibold">Good to know</h3> : null}
+        </>
+      ) : null}
+      <FindingList findings={know} />
+      <Verified edition={edition} />
     </section>
+  );
+}
+
+function FindingList({
+  findings,
+  open = false,
+}: {
+  findings: readonly { title: string; text: string }[];
+  open?: boolean;
+}) {
+  if (findings.length === 0) return null;
+  return (
+    <ul className="mt-2 border-t border-rule">
+      {findings.map(({ title, text }) => (
+        <li
+          key={title}
+          className={`keep figures border-b border-rule py-3 ${open ? "border-l-3 border-l-mark pl-4" : ""}`}
+        >
+          <strong className="font-semibold">{title}</strong> {text}
+        </li>
+      ))}
+    </ul>
+  );
+}
+
+/** How the last recomputation came out: what makes the rest worth reading. */
+function Verified({ edition }: { edition: EditionView }) {
+  const { verified } = edition;
+  if (verified === null) return null;
+  return (
+    <p
+      className={`keep figures mt-4 border-l-3 pl-4 ${verified.same ? "border-good-edge" : "border-danger-edge"}`}
+    >
+      {verified.same
+        ? `Recomputed on ${formatDateTime(verified.at)}: ${verified.agree} of ${verified.files} files agree, byte for byte.`
+        : `Recomputed on ${formatDateTime(verified.at)}: ${verified.agree} of ${verified.files} files agree, the others do not.`}
+    </p>
   );
 }
 

@@ -1,21 +1,24 @@
-import { useMemo } from "react";
+import { useMemo, useState } from "react";
+import { Checkbox } from "~/components/ui/checkbox";
 import { Still } from "~/components/viewer/still";
 import { PopulationBar } from "~/components/workbench/population-bar";
+import { layOutShapes } from "~/lib/edition/shape-layout";
 import { extentWords } from "~/lib/edition/summary";
 import type { EditionView } from "~/lib/edition/views";
 import { capital, countWord, formatDistance, formatEnergy, formatPercent, withUnit } from "~/lib/format";
+import type { HydrogenMode } from "~/lib/url-state";
 import { homeCamera } from "~/lib/view/camera";
 import { viewMarks } from "~/lib/view/marks";
-import { buildScene, type Scene } from "~/lib/view/scene";
-import { homeRotation, stageOf } from "~/lib/view/stage";
+import type { Scene } from "~/lib/view/scene";
 import { EditionHead } from "./edition-head";
 
 const WIDTH = 264;
 const HEIGHT = 184;
 
-/** The most populated shapes side by side, laid over the first and drawn at one scale: flat pictures, no script needed. */
+/** The most populated shapes side by side, each from its broad side and all at one scale: flat pictures, no script needed. */
 export function Shapes({ edition }: { edition: EditionView }) {
-  const pictures = usePictures(edition);
+  const [all, setAll] = useState(false);
+  const pictures = usePictures(edition, all ? "all" : "polar");
   const widest = Math.max(...edition.rows.map((row) => row.population ?? 0), 0);
   if (pictures === null) return null;
   const count = pictures.length;
@@ -29,11 +32,18 @@ export function Shapes({ edition }: { edition: EditionView }) {
             : "The first shape"
           : `The ${countWord(count)} ${populated ? "most populated" : "first"} shapes`}
       </EditionHead>
-      <p className="mt-1 text-ink-2">
-        Heavy atoms laid over {pictures[0]?.name ?? "the first"}, all at one scale; hydrogens on N, O, S and P
-        only.
-      </p>
-      <ul className="mt-3 grid grid-cols-2 gap-x-6 gap-y-6 md:grid-cols-4 print:grid-cols-4 max-sm:gap-x-3">
+      <div className="mt-1 flex flex-wrap items-center justify-between gap-x-6 gap-y-1">
+        <p className="text-ink-2">
+          {count === 1 ? "Seen from its broad side" : "Each from its broad side, all at one scale"};{" "}
+          {all ? "all hydrogens." : "hydrogens on N, O, S and P only."}
+        </p>
+        <div className="with-script print:hidden">
+          <Checkbox checked={all} onChange={(event) => setAll(event.target.checked)}>
+            Hydrogens on carbon
+          </Checkbox>
+        </div>
+      </div>
+      <ul className="mt-3 grid grid-cols-2 gap-x-6 gap-y-6 md:grid-cols-4 print:grid-cols-4 print:gap-x-4 max-sm:gap-x-3">
         {pictures.map(({ row, name, scene, stage, camera, marks, extent }) => (
           <li key={name} className="keep min-w-0">
             <div className="overflow-hidden rounded-md border border-rule-2 bg-view">
@@ -66,38 +76,22 @@ export function Shapes({ edition }: { edition: EditionView }) {
   );
 }
 
-/** One scene for all, so that they lie over each other; then a picture of each from the same camera. */
-function usePictures(edition: EditionView) {
+function usePictures(edition: EditionView, hydrogens: HydrogenMode) {
   return useMemo(() => {
-    const { elements, bonds } = edition.ensemble;
-    const conformers = edition.shapes.flatMap(({ row, positions }) => {
+    const shapes = edition.shapes.flatMap(({ row, positions }) => {
       const found = edition.rows[row];
-      if (!found) return [];
-      const { frame, name, population } = found;
-      return [{ frame, name, population, positions: Float64Array.from(positions), selected: true }];
+      return found ? [{ ...found, positions: Float64Array.from(positions) }] : [];
     });
-    const first = conformers[0];
-    if (!first) return null;
-    const all = buildScene({
-      elements,
-      bonds,
-      conformers,
-      alignOn: null,
-      hydrogens: "polar",
-      mode: "overlay",
-    });
-    const rotation = homeRotation(elements, bonds, all.strong[0]?.positions ?? null);
-    const stage = stageOf(all, rotation, WIDTH, HEIGHT, "bare");
-    const camera = homeCamera(rotation);
-    return all.strong.flatMap((figure) => {
+    const laid = layOutShapes(edition.ensemble, shapes, WIDTH, HEIGHT, hydrogens);
+    if (laid === null) return null;
+    return laid.figures.flatMap(({ figure, rotation, stage }) => {
       const at = edition.rows.findIndex(({ frame }) => frame === figure.frame);
       const row = edition.rows[at];
       if (!row) return [];
-      const scene: Scene = { ...all, mode: "one", strong: [figure], faint: [] };
+      const scene: Scene = { ...laid.scene, mode: "one", strong: [figure], faint: [] };
+      const camera = homeCamera(rotation);
       const marks = viewMarks({
-        scene,
-        stage,
-        camera,
+        ...{ scene, stage, camera },
         picked: [],
         pickText: null,
         numbers: false,
@@ -105,5 +99,5 @@ function usePictures(edition: EditionView) {
       });
       return [{ row, name: row.name, scene, stage, camera, marks, extent: edition.extents[at] ?? 0 }];
     });
-  }, [edition]);
+  }, [edition, hydrogens]);
 }

@@ -1,8 +1,13 @@
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
-import { type ComparedConformer, changeSentence } from "~/lib/edition/compare";
+import {
+  type ComparedAverage,
+  type ComparedConformer,
+  changeSentence,
+  type EditionComparison,
+} from "~/lib/edition/compare";
 import type { HandOverView } from "~/lib/edition/views";
-import { formatCount, formatPopulation, plural, signed } from "~/lib/format";
+import { fixed, formatCount, formatPopulation, plural, signed } from "~/lib/format";
 
 const MOST_ROWS = 40;
 
@@ -40,8 +45,12 @@ export function CompareBlock({ comparison }: { comparison: NonNullable<HandOverV
           </tbody>
         </Table>
       ) : null}
+      <OpenChanges open={result.open} before={before} after={after} />
       {conformers.length > 0 ? (
         <ConformerTable before={before} after={after} rows={conformers.slice(0, MOST_ROWS)} />
+      ) : null}
+      {result.averages.length > 0 ? (
+        <AverageTable before={before} after={after} rows={result.averages} />
       ) : null}
       <p className="figures mt-2 text-ink-2">
         {same === 0 ? "No conformer is" : `${plural(same, "conformer is", "conformers are")}`} the same in
@@ -53,6 +62,75 @@ export function CompareBlock({ comparison }: { comparison: NonNullable<HandOverV
         </p>
       ) : null}
     </section>
+  );
+}
+
+/** What was settled, and what is newly open. */
+function OpenChanges({
+  open,
+  before,
+  after,
+}: {
+  open: EditionComparison["open"];
+  before: number;
+  after: number;
+}) {
+  const lines = [
+    { words: `Open in edition ${before}, no longer in edition ${after}`, titles: open.settled },
+    { words: `Newly open in edition ${after}`, titles: open.added },
+  ].filter(({ titles }) => titles.length > 0);
+  return lines.map(({ words, titles }) => (
+    <p key={words} className="figures mt-3 max-w-read">
+      <span className="font-medium">{words}:</span> {titles.join(" ")}
+    </p>
+  ));
+}
+
+/** Averages of both, each with its uncertainty; a change that its uncertainty covers says nothing. */
+function AverageTable({
+  before,
+  after,
+  rows,
+}: {
+  before: number;
+  after: number;
+  rows: readonly ComparedAverage[];
+}) {
+  return (
+    <Table aria-label="Averages in both" className="mt-4">
+      <thead>
+        <tr>
+          <Th>Average</Th>
+          <Th align="right">Edition {before}</Th>
+          <Th align="right">Edition {after}</Th>
+          <Th align="right">Change</Th>
+          <Th className="max-sm:hidden">Against its uncertainty</Th>
+        </tr>
+      </thead>
+      <tbody>
+        {rows.slice(0, MOST_ROWS).map((row) => {
+          const change = row.before === null || row.after === null ? null : row.after - row.before;
+          const scale = row.sdAfter ?? row.sdBefore ?? Math.abs((row.after ?? row.before ?? 1) / 100);
+          const digits = Math.min(4, Math.max(0, 1 - Math.floor(Math.log10(scale || 1))));
+          const shown = (value: number | null, sd: number | null) =>
+            value === null ? "–" : `${fixed(value, digits)}${sd === null ? "" : ` ± ${fixed(sd, digits)}`}`;
+          return (
+            <Tr key={`${row.property} ${row.unit}`} className="figures">
+              <Td wrap>
+                {row.property}
+                {row.unit ? <span className="text-ink-3"> {row.unit}</span> : null}
+              </Td>
+              <Td align="right">{shown(row.before, row.sdBefore)}</Td>
+              <Td align="right">{shown(row.after, row.sdAfter)}</Td>
+              <Td align="right">{change === null ? "–" : signed(change, digits)}</Td>
+              <Td wrap className="text-ink-2 max-sm:hidden">
+                {row.beyond === null ? "not known" : row.beyond ? "larger" : "within it"}
+              </Td>
+            </Tr>
+          );
+        })}
+      </tbody>
+    </Table>
   );
 }
 
@@ -84,6 +162,9 @@ function ConformerTable({
           <Th align="right" unit="%">
             After
           </Th>
+          <Th align="right" unit="%" className="max-lg:hidden">
+            Range before
+          </Th>
           <Th align="right" unit="% points">
             Change
           </Th>
@@ -99,6 +180,11 @@ function ConformerTable({
               {formatPopulation(row.populationBefore)}
             </Td>
             <Td align="right">{formatPopulation(row.populationAfter)}</Td>
+            <Td align="right" className="text-ink-2 max-lg:hidden">
+              {row.rangeBefore
+                ? `${formatPopulation(row.rangeBefore[0])} to ${formatPopulation(row.rangeBefore[1])}`
+                : "–"}
+            </Td>
             <Td align="right">
               {row.populationBefore === null || row.populationAfter === null
                 ? "–"

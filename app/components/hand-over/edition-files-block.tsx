@@ -47,7 +47,11 @@ export function EditionFilesBlock({ ensembleId, edition }: { ensembleId: string;
         <a className={linkClass} href={to("conformers.zip")} download>
           zip
         </a>
-        . Figures as SVG and PNG stand on the edition's page.
+        . All figures:{" "}
+        <a className={linkClass} href={to("figures.zip")} download>
+          SVG, zip
+        </a>
+        ; with PNG on the edition's page.
       </p>
     </section>
   );

@@ -4,7 +4,7 @@ import { Button } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { SelectField } from "~/components/ui/select-field";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
-import { TextLink } from "~/components/ui/text-link";
+import { linkClass, TextLink } from "~/components/ui/text-link";
 import type { EditionRow, HandOverView } from "~/lib/edition/views";
 import { formatDateShort, formatMoment, formatTime } from "~/lib/format";
 import { FreezeDialog } from "./freeze-dialog";
@@ -46,7 +46,13 @@ export function EditionsBlock({ ensembleId, view }: { ensembleId: string; view: 
             </Tr>
           ) : null}
           {editions.map((edition) => (
-            <Row key={edition.number} edition={edition} ensembleId={ensembleId} now={now} />
+            <Row
+              key={edition.number}
+              edition={edition}
+              ensembleId={ensembleId}
+              now={now}
+              mayShare={mayShare}
+            />
           ))}
         </tbody>
       </Table>
@@ -55,7 +61,17 @@ export function EditionsBlock({ ensembleId, view }: { ensembleId: string; view: 
   );
 }
 
-function Row({ edition, ensembleId, now }: { edition: EditionRow; ensembleId: string; now: string }) {
+function Row({
+  edition,
+  ensembleId,
+  now,
+  mayShare,
+}: {
+  edition: EditionRow;
+  ensembleId: string;
+  now: string;
+  mayShare: boolean;
+}) {
   const number = String(edition.number);
   return (
     <Tr className="figures">
@@ -81,8 +97,20 @@ function Row({ edition, ensembleId, now }: { edition: EditionRow; ensembleId: st
         {edition.liveLinks}
       </Td>
       <Td>
-        {edition.verified === null ? (
-          <span className="text-ink-3">not yet</span>
+        {edition.verifying?.state === "queued" || edition.verifying?.state === "running" ? (
+          <span className="text-ink-3">recomputing</span>
+        ) : edition.verified === null ? (
+          mayShare ? (
+            <Form method="post" preventScrollReset>
+              <input type="hidden" name="intent" value="verify" />
+              <input type="hidden" name="number" value={edition.number} />
+              <button type="submit" className={linkClass}>
+                verify<span className="sr-only"> edition {number}</span>
+              </button>
+            </Form>
+          ) : (
+            <span className="text-ink-3">not yet</span>
+          )
         ) : (
           <Badge tone={edition.verified.same ? "good" : "danger"}>
             {formatMoment(edition.verified.at, now)}

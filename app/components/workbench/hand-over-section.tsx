@@ -1,4 +1,5 @@
-import { Link, useLocation } from "react-router";
+import { useEffect } from "react";
+import { Link, useLocation, useRevalidator } from "react-router";
 import type { HandOverAnswer } from "~/components/hand-over/answer";
 import { CitationBlock } from "~/components/hand-over/citation-block";
 import { CompareBlock } from "~/components/hand-over/compare-block";
@@ -34,6 +35,7 @@ export function HandOverSection({
 }) {
   const { ensemble, sift, result } = useWorkbench();
   const { search } = useLocation();
+  useWatch(view);
   const same = useSameSift(sift, siftId);
   const last = view.editions[0];
   if ((sift === null || result === null) && last === undefined) {
@@ -99,4 +101,19 @@ export function HandOverSection({
       <SourcesBlock />
     </section>
   );
+}
+
+const LOOK_MS = 1_500;
+
+/** Looks again while an edition is being recomputed. */
+function useWatch({ editions }: HandOverView) {
+  const { revalidate, state } = useRevalidator();
+  const busy = editions.some(
+    ({ verifying }) => verifying?.state === "queued" || verifying?.state === "running",
+  );
+  useEffect(() => {
+    if (!busy || state !== "idle") return;
+    const timer = setTimeout(() => void revalidate(), LOOK_MS);
+    return () => clearTimeout(timer);
+  }, [busy, state, revalidate]);
 }

@@ -1,20 +1,28 @@
 import type { PropertyValues } from "../averages/property-set.ts";
 import { RULE_WORDS } from "../averages/rule.ts";
 import { CAUTION } from "../export/json.ts";
-import { plural } from "../format.ts";
+import { formatCount, formatEnergy, plural, withUnit } from "../format.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { distinctPopulations } from "../thermo/populations.ts";
 import { CONSTANTS_YEAR } from "../units.ts";
 import { joinWords } from "../workbench/findings.ts";
-import type { EditionContent, EditionPopulations } from "./content.ts";
+import type { EditionContent, EditionPopulations, OpenItem } from "./content.ts";
 import { averagedProperties } from "./counters.ts";
 import { shapeExtent } from "./extent.ts";
 import { editionFindings } from "./findings.ts";
 import { methodsText } from "./methods-text.ts";
+import { openItems } from "./open.ts";
 import { editionRows } from "./rows.ts";
 import { averagesSection, comparisonSections, samplingSection } from "./sections.ts";
 import { editionSummary } from "./summary.ts";
+import {
+  type DrawnUncertainty,
+  editionMoments,
+  temperaturesSection,
+  type UncertaintyInput,
+  uncertaintySection,
+} from "./uncertainty.ts";
 
 /** Everything that an edition is built from; the same source gives the same content. */
 export interface EditionSource {
@@ -34,20 +42,48 @@ export interface EditionSource {
   /** Property columns with the values of equivalent atoms merged. */
   properties: readonly PropertyValues[];
   version: string;
+  /** Which content is made: 1 as the first editions have it, to verify those; 2 now. */
+  contentVersion: 1 | 2;
+  /** Error of the level, kcal/mol; null draws nothing. */
+  sigma: number | null;
+  sigmaFrom: string | null;
+  seed: number;
+  /** K, beside `temperature`. */
+  temperatures: readonly number[];
+  /** Open at that moment, known from the state of the ensemble alone. */
+  moment: readonly OpenItem[];
+}
+
+/** What is to be drawn for an edition; null where there are no populations or no error. */
+export function uncertaintyInput(source: EditionSource): UncertaintyInput | null {
+  const populations = populationsOf(source);
+  const { sigma, seed, temperature, result, recipe, properties } = source;
+  if (source.contentVersion === 1 || populations === null || sigma === null || sigma === 0) return null;
+  return {
+    energies: result.kept.map(({ relativeEnergy }) => relativeEnergy ?? 0),
+    weights: populations.values.map(({ weight }) => weight),
+    temperatureK: temperature,
+    sigma,
+    seed,
+    moments: editionMoments(properties, result.kept, recipe),
+  };
 }
 
 /**
  * Builds the content of an edition.
  *
- * @example canonicalJson(buildContent(source)) // the bytes that are stored
+ * @param drawn what was drawn from `uncertaintyInput(source)`; null where that is null
+ * @example canonicalJson(buildContent(source, drawn)) // the bytes that are stored
  */
-export function buildContent(source: EditionSource): EditionContent {
+export function buildContent(source: EditionSource, drawn: DrawnUncertainty | null): EditionContent {
   const { level: _level, ...recipe } = source.recipe;
-  const { result } = source;
+  const { result, contentVersion } = source;
   const populations = populationsOf(source);
+  const moments = editionMoments(source.properties, result.kept, source.recipe);
+  const first = contentVersion === 1;
   const facts = {
     schema: "lowlying-edition" as const,
-    version: 1 as const,
+    version: contentVersion,
     caution: CAUTION,
     constants: CONSTANTS_YEAR,
     units: {
@@ -71,16 +107,33 @@ export function buildContent(source: EditionSource): EditionContent {
     pairsExamined: result.pairsExamined,
     populations,
     columns: source.columns,
-    averages: averagesSection(source.properties, result.kept, source.recipe, populations),
+    averages: averagesSection(
+      source.properties,
+      moments,
+      populations,
+      first ? undefined : (drawn?.averages ?? null),
+    ),
     comparisons: comparisonSections(source.columns, source.recipe.levelName, populations),
     sampling: samplingSection(result.kept),
+    uncertainty: uncertaintySection(drawn, source.sigmaFrom),
+    temperatures: first
+      ? null
+      : temperaturesSection({
+          kelvin: source.temperatures,
+          kept: result.kept,
+          populations,
+          moments,
+          level: source.level,
+        }),
   };
   const rows = editionRows(facts);
-  return {
-    ...facts,
-    words: { summary: editionSummary(facts, rows), methods: methodsOf(facts, source.version) },
-    findings: editionFindings(facts, rows),
-  };
+  const found = editionFindings(facts, rows);
+  const words = { summary: editionSummary(facts, rows), methods: methodsOf(facts, source.version) };
+  if (!first) {
+    const open = openItems(facts, result, source.recipe, source.moment);
+    return { ...facts, open, words, findings: found.filter(({ kind }) => kind === "know") };
+  }
+  return { ...facts, open: [], words, findings: found };
 }
 
 function keptOf({ result, labels, energies, positions, ensemble }: EditionSource): EditionContent["kept"] {
@@ -134,7 +187,7 @@ function populationsOf(source: EditionSource): EditionPopulations | null {
   };
 }
 
-function methodsOf(facts: Omit<EditionContent, "words" | "findings">, version: string): string {
+function methodsOf(facts: Omit<EditionContent, "words" | "findings" | "open">, version: string): string {
   const { ensemble, kept, dropped, populations } = facts;
   const bounded = [...kept, ...dropped].filter(({ upperBound }) => upperBound === true).length;
   const { text, assumptions } = methodsText({
@@ -160,9 +213,12 @@ function methodsOf(facts: Omit<EditionContent, "words" | "findings">, version: s
 
 /** Sentences of the methods text on what the edition holds beside populations. */
 function furtherSentences(
-  facts: Pick<EditionContent, "averages" | "columns" | "comparisons" | "kept" | "level">,
+  facts: Pick<
+    EditionContent,
+    "averages" | "columns" | "comparisons" | "kept" | "level" | "uncertainty" | "temperatures"
+  >,
 ) {
-  const { comparisons, level } = facts;
+  const { comparisons, level, uncertainty } = facts;
   const averages = averagedProperties(facts);
   const rules = [...new Set((averages ?? []).map(({ rule }) => RULE_WORDS[rule].name))];
   return [
@@ -174,5 +230,11 @@ function furtherSentences(
       ? null
       : `${level?.name ?? "The level"} was compared with ${joinWords(comparisons.map(({ reference }) => reference))} ` +
         "on the conformers that have both energies, after a least-squares offset.",
+    uncertainty === null
+      ? null
+      : `Ranges hold 95 % of ${formatCount(uncertainty.draws)} draws of the energies with a normal error of ` +
+        `${withUnit(formatEnergy(uncertainty.sigma), "kcal/mol")} each` +
+        `${uncertainty.sigmaFrom === null ? "" : ` (the deviation from ${uncertainty.sigmaFrom})`}, ` +
+        `in antithetic pairs (JCGM 101:2008; generator ${uncertainty.generator}, seed ${uncertainty.seed}).`,
   ].filter((sentence) => sentence !== null);
 }

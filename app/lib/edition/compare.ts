@@ -29,6 +29,9 @@ export interface ComparedConformer {
   after: string | null;
   populationBefore: number | null;
   populationAfter: number | null;
+  /** 95 % ranges, fractions; null where the edition gives none. */
+  rangeBefore: readonly [number, number] | null;
+  rangeAfter: readonly [number, number] | null;
   /** What became of it, where it stands in one edition only. */
   note: string | null;
 }
@@ -39,12 +42,41 @@ export interface EditionComparison {
   changes: EditionChange[];
   /** Those of the later edition in its order, then those that are gone. */
   conformers: ComparedConformer[];
+  /** Properties of either edition. */
+  averages: ComparedAverage[];
+  /** What was open in the one and not in the other, by title. */
+  open: { settled: string[]; added: string[] };
+}
+
+/** A property in one edition or both, each with the standard deviation that the error of its level makes. */
+export interface ComparedAverage {
+  property: string;
+  unit: string | null;
+  before: number | null;
+  after: number | null;
+  sdBefore: number | null;
+  sdAfter: number | null;
+  /** True where the change is larger than both uncertainties together; null where one of them is not known. */
+  beyond: boolean | null;
 }
 
 /** What a comparison looks at; the state of an ensemble that is not frozen yet has it too. */
 export type Comparable = Pick<
   EditionContent,
-  "ensemble" | "inputs" | "level" | "recipe" | "kept" | "dropped" | "held" | "outsideWindow" | "populations"
+  | "version"
+  | "ensemble"
+  | "inputs"
+  | "level"
+  | "recipe"
+  | "kept"
+  | "dropped"
+  | "held"
+  | "outsideWindow"
+  | "populations"
+  | "averages"
+  | "uncertainty"
+  | "temperatures"
+  | "open"
 > & { columns: readonly { name: string; sha256: string }[] };
 
 /** Populations nearer than this print alike. */
@@ -60,15 +92,87 @@ const UNCHANGED = "populations unchanged";
 export function compareEditions(before: Comparable, after: Comparable): EditionComparison {
   const changes = changesOf(before, after).filter((change) => change.before !== change.after);
   const conformers = compareConformers(before, after);
+  const averages = compareAverages(before, after);
+  const open = compareOpen(before, after);
   const words = [
     fileWords(before, after),
     ...changes.map((change) => `${change.what}: ${change.after} instead of ${change.before}`),
     ...columnWords(before, after),
     heldWords(before, after),
     populationWords(before, after, conformers),
+    averageWords(averages),
+    ...openWords(open),
   ].filter((word) => word !== null);
   const nothing = words.every((word) => word === UNCHANGED);
-  return { words: nothing ? ["nothing changed"] : words, changes, conformers };
+  return { words: nothing ? ["nothing changed"] : words, changes, conformers, averages, open };
+}
+
+/**
+ * What a state that is not frozen yet changes since an edition: it has no draws, averages or list of what is open to compare.
+ *
+ * @example changesSince(last, draft) // ["temperature: 310 K instead of 298.15 K"]
+ */
+export function changesSince(before: Comparable, draft: Comparable): string[] {
+  const { uncertainty, temperatures, averages, open } = before;
+  return compareEditions(before, { ...draft, uncertainty, temperatures, averages, open }).words;
+}
+
+function compareAverages(a: Comparable, b: Comparable): ComparedAverage[] {
+  const [before, after] = [a, b].map(
+    ({ averages }) => new Map((averages ?? []).map((row) => [`${row.property}\n${row.unit ?? ""}`, row])),
+  );
+  const keys = [...new Set([...(after?.keys() ?? []), ...(before?.keys() ?? [])])];
+  return keys.map((key) => {
+    const [old, now] = [before?.get(key), after?.get(key)];
+    const [sdBefore, sdAfter] = [old?.error?.sd ?? null, now?.error?.sd ?? null];
+    const [from, to] = [old?.average ?? null, now?.average ?? null];
+    const known = from !== null && to !== null && sdBefore !== null && sdAfter !== null;
+    return {
+      property: (now ?? old)?.property ?? "",
+      unit: (now ?? old)?.unit ?? null,
+      before: from,
+      after: to,
+      sdBefore,
+      sdAfter,
+      beyond: known ? Math.abs(to - from) > sdBefore + sdAfter : null,
+    };
+  });
+}
+
+/** Two averages that print alike at six figures are the same. */
+const differs = ({ before, after }: ComparedAverage) =>
+  before !== after && (before === null || after === null || before.toPrecision(6) !== after.toPrecision(6));
+
+function averageWords(averages: readonly ComparedAverage[]): string | null {
+  const both = averages.filter(({ before, after }) => before !== null && after !== null);
+  const moved = both.filter(differs);
+  if (moved.length === 0) return null;
+  const beyond = moved.filter(({ beyond }) => beyond === true).length;
+  const known = moved.every((one) => one.beyond !== null);
+  const how = !known
+    ? ""
+    : beyond === 0
+      ? ", none by more than its uncertainty"
+      : `, ${formatCount(beyond)} by more than ${beyond === 1 ? "its" : "their"} uncertainty`;
+  return `${formatCount(moved.length)} of ${plural(both.length, "average")} moved${how}`;
+}
+
+function compareOpen(a: Comparable, b: Comparable): EditionComparison["open"] {
+  const titles = ({ open }: Comparable) => open.map(({ title }) => title);
+  const [before, after] = [titles(a), titles(b)];
+  // The first editions kept no list: nothing can be said of them.
+  if (a.version === 1 || b.version === 1) return { settled: [], added: [] };
+  return {
+    settled: before.filter((title) => !after.includes(title)),
+    added: after.filter((title) => !before.includes(title)),
+  };
+}
+
+function openWords({ settled, added }: EditionComparison["open"]): string[] {
+  return [
+    ...(settled.length > 0 ? [`${plural(settled.length, "finding")} no longer open`] : []),
+    ...(added.length > 0 ? [`${plural(added.length, "finding")} newly open`] : []),
+  ];
 }
 
 /** The words on a first edition, which nothing stands before. */
@@ -91,6 +195,14 @@ function changesOf(a: Comparable, b: Comparable): EditionChange[] {
     pair("level", ({ level }) => level?.name ?? "none"),
     pair("temperature", ({ populations }) =>
       populations === null ? "none" : withUnit(formatTemperature(populations.temperature), "K"),
+    ),
+    pair("error of the level", ({ uncertainty }) =>
+      uncertainty === null ? "not given" : withUnit(formatEnergy(uncertainty.sigma), "kcal/mol"),
+    ),
+    pair("further temperatures", ({ temperatures }) =>
+      temperatures === null
+        ? "none"
+        : withUnit(temperatures.kelvin.map((kelvin) => formatTemperature(kelvin)).join(", "), "K"),
     ),
     pair("weights", ({ populations }) => populations?.weights ?? "none"),
     pair("energy tolerance", ({ recipe }) => energy(recipe.energyTolerance)),
@@ -156,7 +268,17 @@ function populationWords(
   if (largest === null || change(largest) < SAME_POPULATION) return UNCHANGED;
   const from = formatPercent(largest.populationBefore ?? 0, 1);
   const to = formatPercent(largest.populationAfter ?? 0, 1);
-  return `largest change of a population: frame ${largest.frame} from ${from} to ${to}`;
+  const name = largest.after ?? largest.before;
+  return `largest change of a population: ${name} (frame ${largest.frame}) from ${from} to ${to}${rangeWords(largest)}`;
+}
+
+/** Whether the later population lies in the range that the earlier edition gave. */
+function rangeWords({ rangeBefore, populationAfter }: ComparedConformer): string {
+  if (rangeBefore === null || populationAfter === null) return "";
+  const [low, high] = rangeBefore;
+  return populationAfter >= low && populationAfter <= high
+    ? ", within the 95 % range it had"
+    : ", outside the 95 % range it had";
 }
 
 function compareConformers(a: Comparable, b: Comparable): ComparedConformer[] {
@@ -168,6 +290,8 @@ function compareConformers(a: Comparable, b: Comparable): ComparedConformer[] {
     after: after.get(frame)?.name ?? null,
     populationBefore: before.get(frame)?.population ?? null,
     populationAfter: after.get(frame)?.population ?? null,
+    rangeBefore: before.get(frame)?.range ?? null,
+    rangeAfter: after.get(frame)?.range ?? null,
     note: before.has(frame)
       ? after.has(frame)
         ? null
@@ -178,12 +302,22 @@ function compareConformers(a: Comparable, b: Comparable): ComparedConformer[] {
   return [...b.kept, ...gone].map(({ frame }) => row(frame));
 }
 
-function placesOf({ kept, populations }: Comparable) {
+interface Place {
+  name: string;
+  population: number | null;
+  range: readonly [number, number] | null;
+}
+
+function placesOf({ kept, populations, uncertainty }: Comparable): Map<number, Place> {
   return new Map(
-    kept.map(({ frame }, index) => [
-      frame,
-      { name: conformerName(index), population: populations?.values[index]?.population ?? null },
-    ]),
+    kept.map(({ frame }, index) => {
+      const drawn = uncertainty?.populations[index];
+      const population = populations?.values[index]?.population ?? null;
+      return [
+        frame,
+        { name: conformerName(index), population, range: drawn ? [drawn.low, drawn.high] : null },
+      ];
+    }),
   );
 }
 

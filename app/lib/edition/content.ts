@@ -59,6 +59,9 @@ const columnSchema = z.object({
   /** In the order of `kept`; null where missing. */
   values: z.array(finite.nullable()),
   sha256,
+  /** Per-atom properties, from content 2 on: the quantity they share and their atom, counted from 1. */
+  quantity: z.string().nullable().optional(),
+  atom: z.number().int().nullable().optional(),
 });
 
 /** One property over the distinct set, as `averages.csv` has it. */
@@ -69,7 +72,47 @@ const averageSchema = z.object({
   average: finite.nullable(),
   spread: finite.nullable(),
   covered: finite,
+  /** What the error of the level makes of it, from content 2 on: standard deviation and 95 % range of the draws. */
+  error: z.object({ sd: finite, low: finite.nullable(), high: finite.nullable() }).nullable().optional(),
 });
+
+/** How far the error of the level moves populations: Monte Carlo, fixed by its seed. */
+const uncertaintySchema = z.object({
+  /** kcal/mol, one standard deviation. */
+  sigma: finite,
+  /** Name of the level that the error was taken against; null where a person gave it or nobody did. */
+  sigmaFrom: z.string().nullable(),
+  seed: z.number().int(),
+  draws: z.number().int(),
+  averageDraws: z.number().int(),
+  generator: z.string(),
+  /** In the order of `kept`: 95 % of the draws lie from `low` to `high`; `lowest` is the share of draws with the lowest energy. */
+  populations: z.array(
+    z.object({ mean: finite, sd: finite, low: finite, median: finite, high: finite, lowest: finite }),
+  ),
+  lowestSet: z.array(z.number().int()),
+});
+
+/** The same energies at several temperatures. */
+const temperaturesSchema = z.object({
+  kelvin: z.array(finite),
+  /** A list a temperature, in the order of `kept`. */
+  populations: z.array(z.array(finite)),
+  thermo: z.array(z.object({ freeEnergy: finite, energy: finite, entropy: finite, effectiveCount: finite })),
+  /** A list a temperature, in the order of `averages`. */
+  averages: z.array(z.array(finite.nullable())),
+  /** What stands against other temperatures: free energies belong to one. */
+  warning: z.string().nullable(),
+});
+
+/** What nobody had settled when the edition was frozen; `section` is where it can be. */
+export const openItemSchema = z.object({
+  code: z.string(),
+  title: z.string(),
+  text: z.string(),
+  section: z.string().nullable(),
+});
+export type OpenItem = z.infer<typeof openItemSchema>;
 
 /** The level of the sift against another one, on the conformers that have both energies. */
 const comparisonSchema = z.object({
@@ -104,7 +147,8 @@ export type EditionFinding = z.infer<typeof editionFindingSchema>;
 
 export const editionContentSchema = z.object({
   schema: z.literal("lowlying-edition"),
-  version: z.literal(1),
+  /** 1 has no uncertainty, no further temperatures and no list of what was open. */
+  version: z.union([z.literal(1), z.literal(2)]),
   caution: z.string(),
   constants: z.string(),
   units: z.record(z.string(), z.string().nullable()),
@@ -171,6 +215,9 @@ export const editionContentSchema = z.object({
   averages: z.array(averageSchema).nullable().default(null),
   comparisons: z.array(comparisonSchema).default([]),
   sampling: samplingSchema.nullable().default(null),
+  uncertainty: uncertaintySchema.nullable().default(null),
+  temperatures: temperaturesSchema.nullable().default(null),
+  open: z.array(openItemSchema).default([]),
   words: z.object({ summary: z.array(z.string()), methods: z.string() }),
   findings: z.array(editionFindingSchema),
 });
@@ -191,6 +238,13 @@ export const editionRecipeSchema = z.object({
   weights: z.enum(["auto", "copies", "degeneracy"]),
   /** Ids of the columns shown, in the order of the content. */
   columns: z.array(z.string()),
+  /** Error of the level, kcal/mol; null draws nothing, as in editions of content 1. */
+  sigma: finite.nullable().default(null),
+  /** Name of the level that the error was taken against. */
+  sigmaFrom: z.string().nullable().default(null),
+  seed: z.number().int().default(0),
+  /** K, shown beside the one that the populations are taken at. */
+  temperatures: z.array(finite).default([]),
   /** What changed since the edition before, in words. */
   changed: z.array(z.string()).default([]),
 });

@@ -1,11 +1,13 @@
 import { averagesCsv } from "../averages/averages-csv.ts";
-import { writeCsv } from "../export/csv.ts";
+import { type CsvColumn, writeCsv } from "../export/csv.ts";
 import type { ExportSet } from "../export/export-set.ts";
 import { writeSdf } from "../export/sdf-writer.ts";
 import { writeXyz } from "../export/xyz-writer.ts";
 import { ENERGY_UNITS } from "../units.ts";
-import { canonicalJson } from "./canonical-json.ts";
 import type { EditionContent } from "./content.ts";
+import { contentText } from "./content-text.ts";
+import { editionFigures } from "./figures.ts";
+import { type FrameEnergy, framesCsv, temperaturesCsv } from "./tables.ts";
 
 /** A file of an edition, in pieces that are made as they are taken. */
 export interface WrittenFile {
@@ -17,9 +19,14 @@ export interface WrittenFile {
  * The files that follow from the content of an edition and the coordinates of its conformers alone.
  *
  * @param positions packed [conformer][atom][x, y, z], in the order of `kept`
- * @example editionFiles(content, positions).map(({ name }) => name) // "distinct-set.xyz", ...
+ * @param energies of every frame that took part, as stored; content 1 has no file of them
+ * @example editionFiles(content, positions, energies).map(({ name }) => name) // "distinct-set.xyz", ...
  */
-export function editionFiles(content: EditionContent, positions: Float64Array): WrittenFile[] {
+export function editionFiles(
+  content: EditionContent,
+  positions: Float64Array,
+  energies: readonly FrameEnergy[],
+): WrittenFile[] {
   const set = exportSet(content);
   const length = 3 * content.ensemble.atoms;
   const rowOf = new Map(content.kept.map(({ frame }, row) => [frame, row]));
@@ -33,17 +40,37 @@ export function editionFiles(content: EditionContent, positions: Float64Array): 
   return [
     { name: "distinct-set.xyz", pieces: writeXyz(set, positionsOf) },
     { name: "distinct-set.sdf", pieces: writeSdf(set, { bonds, orders }, positionsOf, properties) },
-    { name: "results.csv", pieces: writeCsv(set, columns) },
+    { name: "results.csv", pieces: writeCsv(set, [...rangeColumns(content), ...columns]) },
     ...(content.averages === null
       ? []
       : [
           {
             name: "averages.csv",
-            pieces: [averagesCsv(content.averages.map((row) => ({ ...row, uncertainty: null })))],
+            pieces: [
+              averagesCsv(content.averages.map((row) => ({ ...row, uncertainty: row.error?.sd ?? null }))),
+            ],
           },
         ]),
-    { name: "results.json", pieces: [canonicalJson(content)] },
+    ...(content.temperatures === null
+      ? []
+      : [{ name: "temperatures.csv", pieces: temperaturesCsv(content, content.temperatures) }]),
+    ...(content.version === 1 ? [] : [{ name: "frames.csv", pieces: framesCsv(content, energies) }]),
+    { name: "results.json", pieces: [contentText(content)] },
     { name: "methods.txt", pieces: [`${content.words.methods}\n\n${content.caution}\n`] },
+    ...(content.version === 1
+      ? []
+      : editionFigures(content, positions).map(({ name, svg }) => ({ name, pieces: [svg] }))),
+  ];
+}
+
+/** What the draws say of each conformer, before the columns of the ensemble. */
+function rangeColumns({ uncertainty }: EditionContent): CsvColumn[] {
+  if (uncertainty === null) return [];
+  const { populations } = uncertainty;
+  return [
+    { name: "populationLow", unit: null, values: populations.map(({ low }) => low) },
+    { name: "populationHigh", unit: null, values: populations.map(({ high }) => high) },
+    { name: "lowestShare", unit: null, values: populations.map(({ lowest }) => lowest) },
   ];
 }
 
@@ -74,11 +101,19 @@ export const FILE_WORDS: Record<string, { title: string; format: string }> = {
   "distinct-set.sdf": { title: "Distinct set", format: "SDF" },
   "results.csv": { title: "Populations and properties", format: "CSV" },
   "averages.csv": { title: "Averages", format: "CSV" },
+  "temperatures.csv": { title: "Several temperatures", format: "CSV" },
+  "frames.csv": { title: "What became of every frame", format: "CSV" },
+  "figure-shapes.svg": { title: "Figure: shapes", format: "SVG" },
+  "figure-energy-ladder.svg": { title: "Figure: energy ladder", format: "SVG" },
+  "figure-cumulative-population.svg": { title: "Figure: cumulative population", format: "SVG" },
+  "figure-population-ranges.svg": { title: "Figure: populations with ranges", format: "SVG" },
+  "figure-temperatures.svg": { title: "Figure: populations against temperature", format: "SVG" },
   "results.json": { title: "All results with recipe", format: "JSON" },
   "methods.txt": { title: "Methods text", format: "text" },
   "citation.bib": { title: "Citation", format: "BibTeX" },
   "CITATION.cff": { title: "Citation", format: "CFF" },
   "manifest.json": { title: "Manifest of the bundle", format: "JSON" },
   "bundle.zip": { title: "Bundle with checksums", format: "zip" },
+  "figures.zip": { title: "All figures", format: "zip" },
   "conformers.zip": { title: "One file a conformer, for the next program", format: "zip" },
 };

@@ -13,8 +13,9 @@ import { thermalEnergyKcal } from "../units.ts";
 import { byPopulation, type ConformerRow } from "../workbench/conformers.ts";
 import { joinWords, shareWords } from "../workbench/findings.ts";
 import type { EditionContent, EditionFinding } from "./content.ts";
+import { lowestOf } from "./open.ts";
 
-type Facts = Omit<EditionContent, "words" | "findings">;
+type Facts = Omit<EditionContent, "words" | "findings" | "open">;
 
 const NAMED = 6;
 
@@ -26,6 +27,7 @@ const NAMED = 6;
 export function editionFindings(content: Facts, rows: readonly ConformerRow[]): EditionFinding[] {
   return [
     questions(content),
+    ...lowest(content, rows),
     order(content, rows),
     energies(content),
     ...content.comparisons.map(against(content)),
@@ -45,6 +47,18 @@ function questions({ ensemble }: Facts): EditionFinding | null {
     title: `${capital(pluralWord(ensemble.openQuestions, "question"))} of intake ${one ? "is" : "are"} not answered.`,
     text: "Frames that wait for an answer take no part in this edition.",
   };
+}
+
+/** Which shape is the lowest, where the error of the level does not move it; else it is for somebody to settle. */
+function lowest({ uncertainty }: Facts, rows: readonly ConformerRow[]): EditionFinding[] {
+  if (uncertainty === null) return [];
+  return lowestOf({
+    names: rows.map(({ name }) => name),
+    energies: rows.map(({ relativeEnergy }) => relativeEnergy ?? 0),
+    drawn: uncertainty,
+  })
+    .filter(({ kind }) => kind !== "settle")
+    .map(({ title, reason }) => ({ kind: "know", title, text: reason }));
 }
 
 /** The energy that would have to be wrong for the two most populated to change places: RT ln(p1/p2). */

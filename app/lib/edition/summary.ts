@@ -1,4 +1,4 @@
-import { formatDistance, plural, withUnit } from "../format.ts";
+import { formatDistance, formatEnergy, formatPercent, plural, withUnit } from "../format.ts";
 import { byPopulation, type ConformerRow } from "../workbench/conformers.ts";
 import { populationsFinding, shareWords } from "../workbench/findings.ts";
 import type { EditionContent } from "./content.ts";
@@ -13,7 +13,7 @@ const SAME_EXTENT = 0.05;
  * @returns sentences, the first of which stands alone
  */
 export function editionSummary(
-  content: Pick<EditionContent, "kept" | "level" | "populations">,
+  content: Pick<EditionContent, "kept" | "level" | "populations" | "uncertainty">,
   rows: readonly ConformerRow[],
 ): string[] {
   const first = rows[0];
@@ -30,8 +30,20 @@ export function editionSummary(
   return [
     `${text}${of}, by ${content.level?.name ?? "the"} energies.`,
     finding.second,
+    ranges(content.uncertainty, rows),
     stretched(content.kept, rows),
   ].filter((sentence) => sentence !== null);
+}
+
+/** How far the error of the level moves the most populated shape, and how often it is the lowest. */
+function ranges(uncertainty: EditionContent["uncertainty"], rows: readonly ConformerRow[]): string | null {
+  const [first] = byPopulation(rows);
+  const drawn = first === undefined ? undefined : uncertainty?.populations[first.index];
+  if (uncertainty === null || first === undefined || drawn === undefined || rows.length < 2) return null;
+  return (
+    `With an error of ± ${withUnit(formatEnergy(uncertainty.sigma), "kcal/mol")} in each energy ${first.name} holds between ` +
+    `${formatPercent(drawn.low)} and ${formatPercent(drawn.high)} (95 % of the draws) and is the lowest in ${shareWords(drawn.lowest)} of them.`
+  );
 }
 
 /** How much the most stretched shape holds; nothing where all are about as long. */

@@ -1,6 +1,6 @@
 import type { ConformerRow } from "../workbench/conformers.ts";
 import type { EditionComparison } from "./compare.ts";
-import type { EditionContent, EditionFile, EditionFinding } from "./content.ts";
+import type { EditionContent, EditionFile, EditionFinding, OpenItem } from "./content.ts";
 
 /** What loaders hand to the pages of editions: plain JSON, nothing that a reader of the page may not see. */
 
@@ -18,6 +18,8 @@ export interface EditionRow {
   version: string;
   files: EditionFile[];
   verified: VerifiedView | null;
+  /** Null where none waits, runs or failed. */
+  verifying: VerifyingView | null;
 }
 
 /** How the last recomputation of an edition came out. */
@@ -29,6 +31,15 @@ export interface VerifiedView {
   files: number;
   agree: number;
   differing: { name: string; was: string; is: string | null }[];
+  /** What went in and is not what it was, each with what was taken instead. */
+  inputs: { name: string; note: string }[];
+}
+
+/** A recomputation that waits, runs, or could not be done. */
+export interface VerifyingView {
+  state: "queued" | "running" | "failed";
+  progress: number;
+  error: string | null;
 }
 
 /** A row of the table of links. No secret: it is kept nowhere. */
@@ -50,7 +61,14 @@ export interface HandOverView {
   editions: EditionRow[];
   links: LinkRow[];
   /** What the next edition would bring, in words; null where nothing can be frozen yet. */
-  next: { number: number; changed: string[]; findings: EditionFinding[] } | null;
+  next: {
+    number: number;
+    changed: string[];
+    /** Open now, but for what draws leave open: the page draws them itself. */
+    open: OpenItem[];
+    /** Error of the level that it would take, kcal/mol; null without energies. */
+    sigma: number | null;
+  } | null;
   /** Methods text of the distinct set shown, then a line an assumption; null where there is no set. */
   methods: string[] | null;
   comparison: { before: number; after: number; result: EditionComparison } | null;
@@ -93,6 +111,11 @@ export interface EditionView {
   caution: string;
   findings: EditionFinding[];
   averages: EditionContent["averages"];
+  uncertainty: EditionContent["uncertainty"];
+  /** In the order of `averages` and `rows`. */
+  temperatures: EditionContent["temperatures"];
+  /** What was open when it was frozen. */
+  open: OpenItem[];
   rows: ConformerRow[];
   /** Conformers in all; `rows` holds the lowest of them. */
   conformers: number;

@@ -142,7 +142,12 @@ function samplingSentence(coverage: Coverage | null): string | null {
   return `The next frame of this search would be a new shape in ${shareWords(1 - coverage.coverage)} of the cases.`;
 }
 
-function lowestFindings(input: TrustInput): TrustFinding[] {
+/** Which shape is the lowest under the error of the level, for Trust and for editions alike. */
+export function lowestFindings(
+  input: Pick<TrustInput, "names" | "energies"> & {
+    error: { sigmaKcal: number; drawn: Pick<PopulationError, "lowestShare" | "lowestSet"> } | null;
+  },
+): TrustFinding[] {
   const { error, names } = input;
   if (error === null || names.length < 2) return [];
   const { lowestShare, lowestSet } = error.drawn;

@@ -12,10 +12,13 @@ import {
   pluralWord,
   withUnit,
 } from "../format.ts";
+import { readAskId } from "../intake/reading-questions.ts";
+import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
+import { spreadWarning } from "../intake/whole-spread.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { thermalEnergyKcal } from "../units.ts";
-import type { EnsembleView } from "../views.ts";
+import type { EnsembleView, LevelView } from "../views.ts";
 import { byPopulation, type ConformerRow, type FrameRole, type Outside } from "./conformers.ts";
 
 /** What a section says first: the finding, and a second line that backs it. Plain text, computed. */
@@ -178,7 +181,7 @@ function leftOut(result: SiftResult): string | null {
 
 /** Kept conformers whose own mirror image lies near the tolerance, where the choice of it decides on the factor 2. */
 export function nearMirror(
-  result: SiftResult,
+  result: Pick<SiftResult, "kept">,
   recipe: SiftRecipe,
 ): { frame: number; name: string; rmsd: number }[] {
   if (recipe.mirror !== "merge") return [];
@@ -191,16 +194,46 @@ export function nearMirror(
 }
 
 /**
+ * Whether answers may bring further questions: the unit is asked once the number is known, and both once the files could
+ * be read.
+ */
+export function moreMayFollow(questions: readonly IntakeQuestion[]): boolean {
+  const open = questions.filter(({ answered }) => answered === undefined);
+  const unitAsked = questions.some(({ code }) => code === "energy-unit");
+  return open.some(({ id, code }) => readAskId(id) !== null || (code === "energy-from" && !unitAsked));
+}
+
+/** Energies that span more, or less, than those of conformers do, as intake says it of the files; null where they do not. */
+export function spreadRemark(messages: readonly IntakeMessage[]): string | null {
+  const found = messages.find(({ code, frame }) => code === "E12" && frame === undefined);
+  return found ? [found.message, found.hint].filter(Boolean).join(" ") : null;
+}
+
+/** The same of the conformers of a set, whose populations rest on these energies; null where nothing is odd. */
+export function spreadCaution(rows: readonly ConformerRow[], level: LevelView | null): string | null {
+  if (level === null) return null;
+  const energies = rows.flatMap(({ relativeEnergy }) => (relativeEnergy === null ? [] : [relativeEnergy]));
+  const words = energies.length < 2 ? null : spreadWarning(level.name, "kcal/mol", energies);
+  return words === null ? null : `${words} They were read in ${level.unit}.`;
+}
+
+/**
  * What intake says first.
  *
- * @param waiting frames held for nothing but an open question
+ * @param intake frames held for nothing but an open question, the questions, and what was said of the files
  */
-export function intakeFinding(ensemble: EnsembleView, waiting: number): Finding {
+export function intakeFinding(
+  ensemble: EnsembleView,
+  intake: { waiting: number; questions: readonly IntakeQuestion[]; messages: readonly IntakeMessage[] },
+): Finding {
   const { frames, accepted, remarked, held, openQuestions } = ensemble;
+  const { waiting } = intake;
   const read = `${plural(frames, "frame")} read:`;
   if (openQuestions > 0) {
-    const first =
-      openQuestions === 1 ? "One question comes" : `${capital(countWord(openQuestions))} questions come`;
+    const atLeast = moreMayFollow(intake.questions);
+    const count = openQuestions + (atLeast ? 1 : 0);
+    const asked = `${atLeast ? "at least " : ""}${countWord(count)}`;
+    const first = count === 1 ? "One question comes" : `${capital(asked)} questions come`;
     const other = held - waiting;
     const parts = [
       waiting > 0 ? `${formatCount(waiting)} can be accepted` : null,
@@ -216,22 +249,39 @@ export function intakeFinding(ensemble: EnsembleView, waiting: number): Finding 
       };
     }
     return {
-      text: `${read} ${joinWords(parts)}. ${first} first; nothing is computed before ${openQuestions === 1 ? "it is" : "they are"} answered.`,
+      text: `${read} ${joinWords(parts)}. ${first} first; nothing is computed before ${count === 1 ? "it is" : "they are"} answered.`,
       second: null,
     };
   }
+  const { also, todo } = energiesFinding(ensemble, intake.messages);
   if (held === 0) {
     const remark = remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark`;
     return {
-      text: `${read} ${frames === 1 ? "it is accepted" : "all are accepted"}${remark}.`,
-      second: null,
+      text: `${read} ${frames === 1 ? "it is accepted" : "all are accepted"}${remark}.${also}`,
+      second: todo,
     };
   }
   const remark = remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark,`;
+  const kept = "A held frame is kept and left out of every computation; the list says which can be released.";
   return {
-    text: `${read} ${formatCount(accepted)} ${accepted === 1 ? "is" : "are"} accepted${remark} and ${formatCount(held)} ${held === 1 ? "is" : "are"} held.`,
-    second: "A held frame is kept, and left out of every computation until somebody releases it.",
+    text: `${read} ${formatCount(accepted)} ${accepted === 1 ? "is" : "are"} accepted${remark} and ${formatCount(held)} ${held === 1 ? "is" : "are"} held.${also}`,
+    second: [todo, kept].filter(Boolean).join(" "),
   };
+}
+
+/** What is to be known of the energies before anything else, and what to do about it. */
+function energiesFinding(
+  ensemble: EnsembleView,
+  messages: readonly IntakeMessage[],
+): { also: string; todo: string | null } {
+  if (ensemble.accepted > 0 && ensemble.levels.every(({ count }) => count === 0)) {
+    return {
+      also: " None has an energy, so there are no populations.",
+      todo: "Give the energies as a table or a second structure file, or read the files again and name the number that is the energy.",
+    };
+  }
+  const odd = spreadRemark(messages);
+  return odd === null ? { also: "", todo: null } : { also: ` ${odd}`, todo: null };
 }
 
 /** The pair of figures between which a tolerance can move without changing anything that was merged. */

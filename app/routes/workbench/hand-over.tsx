@@ -4,13 +4,14 @@ import { HandOverSection } from "~/components/workbench/hand-over-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { env } from "~/env.server";
+import { readAveragesState } from "~/lib/averages/averages-state";
 import { readState } from "~/lib/url-state";
 import { readForm } from "~/routes/read-form.server";
 import { editionNumber } from "~/routes/share/share-call.server";
 import type { Actor } from "~/services/auth/access.server";
+import { askToVerify } from "~/services/editions/ask-to-verify.server";
 import { freezeEdition, freezeSchema } from "~/services/editions/freeze-edition.server";
 import { loadHandOver } from "~/services/editions/load-hand-over.server";
-import { verifyEdition } from "~/services/editions/verify-edition.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import { endLink } from "~/services/links/end-link.server";
 import { makeLink, newLinkSchema } from "~/services/links/make-link.server";
@@ -32,9 +33,10 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
   const actor = context.get(actorContext);
   const ensembleId = params.id;
   const { sift: siftId, temperatureK: temperature, weights } = readState(url.searchParams);
+  const { sigmaKcal, sigmaFrom } = readAveragesState(url.searchParams);
   return forPage(context.get(requestIdContext), async () => {
     const sift = await loadSift({ actor, ensembleId, siftId });
-    const shown = { siftId: sift?.id ?? null, temperature, weights };
+    const shown = { siftId: sift?.id ?? null, temperature, weights, error: { sigmaKcal, sigmaFrom } };
     const [files, view] = await Promise.all([
       sift === null ? null : describeExports({ actor, siftId: sift.id, temperature }),
       loadHandOver({ actor, ensembleId, ...shown, compare: comparedIn(url.searchParams) }),
@@ -64,7 +66,7 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
     case "freeze":
       return freeze(actor, ensembleId, form);
     case "verify":
-      await verifyEdition({ actor, ensembleId, number });
+      await askToVerify({ actor, ensembleId, number });
       return { ok: true } satisfies HandOverAnswer;
     case "make-link":
       return makeOne(actor, ensembleId, number, form);
@@ -87,6 +89,8 @@ function refused({ issues }: Issues) {
   return data({ message, fields } satisfies HandOverAnswer, { status: 400 });
 }
 
+const numbersIn = (list: string) => list.split(",").filter(Boolean).map(Number);
+
 async function freeze(actor: Actor, ensembleId: string, form: FormData) {
   const asked = freezeSchema.safeParse({
     sift: text(form, "sift"),
@@ -94,6 +98,9 @@ async function freeze(actor: Actor, ensembleId: string, form: FormData) {
     weights: text(form, "weights"),
     title: text(form, "title"),
     remark: text(form, "remark"),
+    sigma: text(form, "sigma") === "" ? undefined : Number(text(form, "sigma")),
+    sigmaFrom: text(form, "sigmaFrom") || null,
+    temperatures: form.has("temperatures") ? numbersIn(text(form, "temperatures")) : undefined,
   });
   if (!asked.success) return refused(asked.error);
   const { number } = await freezeEdition({ actor, ensembleId, request: asked.data });
@@ -133,7 +140,7 @@ export function shouldRevalidate({
   const sent = formMethod !== undefined && formMethod !== "GET";
   if (sent || currentUrl.pathname !== nextUrl.pathname) return defaultShouldRevalidate;
   if (currentUrl.href === nextUrl.href) return defaultShouldRevalidate;
-  return ["sift", "T", "weights", "from", "to"].some(
+  return ["sift", "T", "weights", "sig", "sigref", "from", "to"].some(
     (name) => currentUrl.searchParams.get(name) !== nextUrl.searchParams.get(name),
   );
 }

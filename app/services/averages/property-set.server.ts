@@ -96,7 +96,7 @@ export async function propertyValues(
 }
 
 /** Per-atom columns get the mean over their equivalent atoms; each column stays a row of its own. */
-async function mergeAtoms(
+export async function mergeAtoms(
   ensemble: EnsembleRow,
   kept: readonly KeptConformer[],
   properties: PropertyValues[],

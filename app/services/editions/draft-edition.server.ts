@@ -1,10 +1,13 @@
 import { eq } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, type ensembles } from "../../db/schema.server.ts";
-import { buildContent } from "../../lib/edition/build.ts";
+import { DEFAULT_ERROR_KCAL } from "../../lib/averages/averages-state.ts";
+import { buildContent, type EditionSource } from "../../lib/edition/build.ts";
 import type { EditionContent } from "../../lib/edition/content.ts";
+import { deviationFrom } from "../../lib/edition/sections.ts";
 import { type FoundSift, readResult } from "../sifts/find-sift.server.ts";
-import { describeForEdition, editionSources } from "./edition-source.server.ts";
+import { columnRows, contentColumn, describeForEdition, editionSources } from "./edition-source.server.ts";
+import { momentItems } from "./moment-items.server.ts";
 import { EDITION_CODE_VERSION, productVersion } from "./product-version.ts";
 
 const NOTHING = "0".repeat(64);
@@ -29,8 +32,8 @@ async function columnHeads(ensembleId: string) {
 }
 
 /**
- * What an edition would say if it were frozen now, without coordinates and values: enough for what changed and for what is
- * open. Null while the sift is not done.
+ * What an edition would say if it were frozen now, without coordinates, properties and draws: enough for what changed and
+ * for what is open, and the error of the level that it would take. Null while the sift is not done.
  */
 export async function draftEdition(options: {
   ensemble: typeof ensembles.$inferSelect;
@@ -38,13 +41,21 @@ export async function draftEdition(options: {
   sift: FoundSift;
   temperature: number;
   weights: "auto" | "copies" | "degeneracy";
-}): Promise<EditionContent | null> {
+  error: { sigmaKcal: number | null; sigmaFrom: string | null };
+}): Promise<{ content: EditionContent; sigma: number | null } | null> {
   const { ensemble, team, sift, temperature, weights } = options;
   const result = sift.status === "done" ? await readResult(sift.id) : null;
   if (result === null) return null;
   const heads = await columnHeads(ensemble.id);
   const level = heads.find(({ id }) => id === sift.recipe.level);
-  return buildContent({
+  const levels = heads.filter(({ kind }) => kind === "energy").map(({ id }) => id);
+  const energies = new Map(
+    (await columnRows(ensemble.id, levels)).map((row) => [
+      row.id,
+      contentColumn(row, ensemble.frames, result.kept).values,
+    ]),
+  );
+  const source: EditionSource = {
     team,
     ensemble: describeForEdition(ensemble),
     inputs: { files: await editionSources(ensemble.id), framesSha256: NOTHING },
@@ -65,15 +76,28 @@ export async function draftEdition(options: {
     positions: new Float64Array(3 * ensemble.atoms * result.kept.length),
     temperature,
     weights,
-    columns: heads.map(({ name, kind, unit, rule, sha }) => ({
+    columns: heads.map(({ id, name, kind, unit, rule, sha }) => ({
       name,
       kind,
       unit,
       rule,
-      values: [],
+      values: energies.get(id) ?? [],
       sha256: sha?.toString("hex") ?? NOTHING,
     })),
     properties: [],
     version: productVersion(EDITION_CODE_VERSION),
-  });
+    contentVersion: 2,
+    sigma: null,
+    sigmaFrom: null,
+    seed: 0,
+    temperatures: [],
+    moment: await momentItems(sift),
+  };
+  const against = heads.find(({ id }) => id === options.error.sigmaFrom);
+  const taken = against ? deviationFrom(source.columns, sift.recipe.levelName, against.name) : null;
+  const given = options.error.sigmaKcal ?? DEFAULT_ERROR_KCAL;
+  return {
+    content: buildContent(source, null),
+    sigma: sift.recipe.level === null ? null : (taken ?? given),
+  };
 }

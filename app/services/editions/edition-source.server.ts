@@ -2,13 +2,16 @@ import { createHash } from "node:crypto";
 import { and, asc, eq, inArray } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, type ensembles, frames } from "../../db/schema.server.ts";
+import type { PropertyValues } from "../../lib/averages/property-set.ts";
+import { ruleOf } from "../../lib/averages/rule.ts";
 import { unpackColumn } from "../../lib/column-data.ts";
 import type { EditionSource } from "../../lib/edition/build.ts";
-import type { EditionContent, EditionInputs, EditionRecipe } from "../../lib/edition/content.ts";
+import type { EditionContent, EditionRecipe, OpenItem } from "../../lib/edition/content.ts";
+import type { FrameEnergy } from "../../lib/edition/tables.ts";
 import type { SiftResult } from "../../lib/recipe/result.ts";
 import { bondOrders } from "../../lib/sdf/orders.ts";
 import type { Graph } from "../../lib/structure.ts";
-import { propertyValues } from "../averages/property-set.server.ts";
+import { mergeAtoms } from "../averages/property-set.server.ts";
 import { findFiles } from "../ensembles/load-ensemble.server.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
 import { unpackMolecule } from "../ensembles/molecule.server.ts";
@@ -16,14 +19,6 @@ import { hashFrames } from "./hash-frames.server.ts";
 
 type EnsembleRow = typeof ensembles.$inferSelect;
 type ColumnRow = typeof columns.$inferSelect;
-
-/** What an edition is made of, with the checksums of what went in. */
-export interface CollectedEdition {
-  source: EditionSource;
-  inputs: EditionInputs;
-  /** Packed [conformer][atom][x, y, z] in the order of the distinct set. */
-  positions: Float64Array;
-}
 
 interface FrameFact {
   label: string | null;
@@ -73,38 +68,47 @@ export async function columnIds(ensembleId: string): Promise<string[]> {
   return rows.map(({ id }) => id);
 }
 
-function valuesOf(column: ColumnRow, frameCount: number, kept: SiftResult["kept"]): (number | null)[] {
-  const { values, present } = unpackColumn(column.data, frameCount);
-  return kept.map(({ frame }) => (present[frame - 1] === 1 ? (values[frame - 1] ?? null) : null));
-}
-
 const shaOf = (data: Uint8Array) => createHash("sha256").update(data).digest("hex");
 
-/** Names, units and rules as they were frozen; only the numbers are read again. */
-function asFrozen(columns: ColumnRow[], frozen: EditionContent | null): ColumnRow[] {
-  if (frozen === null) return columns;
-  return columns.map((column, k) => {
-    const { name, kind, unit, rule } = frozen.columns[k] ?? column;
-    const level = kind === "energy" && name === frozen.level?.name ? frozen.level : null;
-    return {
-      ...column,
-      name,
-      kind,
-      unit,
-      rule,
-      ...(level && {
-        energyKind: level.energyKind,
-        temperature: level.temperature,
-        kindStated: level.kindStated,
-        ordinal: level.ordinal,
-      }),
-    };
-  });
+/** A stored column as an edition keeps it: its numbers over the conformers, and the checksum of all of them. */
+export function contentColumn(
+  column: ColumnRow,
+  frameCount: number,
+  kept: readonly { frame: number }[],
+): EditionContent["columns"][number] {
+  const { name, kind, unit, rule, quantity, atom } = column;
+  const { values, present } = unpackColumn(column.data, frameCount);
+  return {
+    ...{ name, kind, unit, rule, quantity, atom },
+    values: kept.map(({ frame }) => (present[frame - 1] === 1 ? (values[frame - 1] ?? null) : null)),
+    sha256: shaOf(column.data),
+  };
 }
 
-function contentColumn(column: ColumnRow, frameCount: number, kept: SiftResult["kept"]) {
-  const { name, kind, unit, rule } = column;
-  return { name, kind, unit, rule, values: valuesOf(column, frameCount, kept), sha256: shaOf(column.data) };
+/** A stored level as an edition describes it. */
+export function contentLevel(level: ColumnRow): NonNullable<EditionContent["level"]> {
+  return {
+    name: level.name,
+    unit: level.unit ?? "",
+    energyKind: level.energyKind ?? "electronic",
+    temperature: level.temperature,
+    kindStated: level.kindStated,
+    ordinal: level.ordinal,
+  };
+}
+
+/** Energies of the frames that took part, as stored; none of them has one without a level. */
+export function frameEnergies(
+  level: ColumnRow | null,
+  frameCount: number,
+  numbers: readonly number[],
+): FrameEnergy[] {
+  if (level === null) return numbers.map((frame) => ({ frame, energy: null }));
+  const { values, present } = unpackColumn(level.data, frameCount);
+  return numbers.map((frame) => ({
+    frame,
+    energy: present[frame - 1] === 1 ? (values[frame - 1] ?? null) : null,
+  }));
 }
 
 /** Bond orders of the file or a SMILES, else perceived. */
@@ -164,72 +168,88 @@ export function describeForEdition(ensemble: EnsembleRow): EditionContent["ensem
   };
 }
 
+/** Coordinates and labels of conformers, and the checksum of all frames that took part. */
+export interface CollectedFrames {
+  framesSha256: string;
+  /** Packed [conformer][atom][x, y, z] in the order of the distinct set. */
+  positions: Float64Array;
+  labels: (string | null)[];
+}
+
+/** Reads frames anew. Null where one of them is not there any more. */
+export async function collectFrames(
+  ensemble: EnsembleRow,
+  result: Omit<SiftResult, "seconds">,
+): Promise<CollectedFrames | null> {
+  const facts = await ownFrames(ensemble.id);
+  const numbers = framesOf(result);
+  const indexOf = (frame: number) => facts.get(frame)?.index ?? -1;
+  if (numbers.some((frame) => indexOf(frame) < 0)) return null;
+  const kept = result.kept.map(({ frame }) => frame);
+  return {
+    framesSha256: await hashFrames(ensemble.id, unpackMolecule(ensemble), numbers, numbers.map(indexOf)),
+    positions: await loadPositions(ensemble.id, ensemble.atoms, kept.map(indexOf)),
+    labels: kept.map((frame) => facts.get(frame)?.label ?? null),
+  };
+}
+
 /**
- * Collects an edition from what is stored: coordinates, columns, labels and files are read anew, and their checksums are
- * taken of what was read.
- *
- * @param described the ensemble as the edition describes it: names and decisions, which no computation gives
+ * The source of an edition from its parts. Names and decisions (`described`, `level`, the columns' names and rules) come
+ * from whoever calls: at a recomputation they are as they were frozen.
  */
-export async function collectEdition(options: {
+export async function editionSource(options: {
   ensemble: EnsembleRow;
   described: EditionContent["ensemble"];
   team: string;
   recipe: EditionRecipe;
   result: Omit<SiftResult, "seconds">;
   files: EditionContent["inputs"]["files"];
+  level: EditionContent["level"];
+  columns: EditionContent["columns"];
+  frames: CollectedFrames;
   version: string;
-  /** What was frozen, where it is computed again. */
-  frozen: EditionContent | null;
-}): Promise<CollectedEdition> {
-  const { ensemble, described, team, recipe, result, files, version } = options;
-  const graph = unpackMolecule(ensemble);
-  const facts = await ownFrames(ensemble.id);
-  const indexOf = (frame: number) => facts.get(frame)?.index ?? -1;
-  const numbers = framesOf(result);
-  const framesSha256 = await hashFrames(ensemble.id, graph, numbers, numbers.map(indexOf));
-  const kept = result.kept.map(({ frame }) => frame);
-  const positions = await loadPositions(ensemble.id, ensemble.atoms, kept.map(indexOf));
-  const shown = asFrozen(await columnRows(ensemble.id, recipe.columns), options.frozen);
-  const properties = await propertyValues(
-    ensemble,
-    result.kept,
-    shown.filter(({ kind }) => kind === "property"),
-  );
-  const contentColumns = shown.map((column) => contentColumn(column, ensemble.frames, result.kept));
-  const level = shown.find(({ id }) => id === recipe.recipe.level);
+  contentVersion: 1 | 2;
+  moment: readonly OpenItem[];
+}): Promise<EditionSource> {
+  const { ensemble, described, recipe, result, level, columns: all, frames: collected } = options;
+  const own = level && all.find(({ kind, name }) => kind === "energy" && name === level.name);
+  const properties = all
+    .filter(({ kind }) => kind === "property")
+    .map(
+      ({ name, unit, rule, quantity, atom, values }): PropertyValues => ({
+        ...{ id: "", name, unit, values, origin: null, definition: null },
+        rule: ruleOf({ rule, unit }),
+        quantity: quantity ?? null,
+        atoms: atom == null ? null : [atom - 1],
+      }),
+    );
   return {
-    positions,
-    inputs: {
-      files: files.map(({ name, sha256 }, position) => ({ position, name, sha256 })),
-      frames: framesSha256,
-      columns: shown.map(({ id, name }, k) => ({ id, name, sha256: contentColumns[k]?.sha256 ?? "" })),
-    },
-    source: {
-      team,
-      ensemble: described,
-      inputs: { files, framesSha256 },
-      level: level
-        ? {
-            name: level.name,
-            unit: level.unit ?? "",
-            energyKind: level.energyKind ?? "electronic",
-            temperature: level.temperature,
-            kindStated: level.kindStated,
-            ordinal: level.ordinal,
-          }
-        : null,
-      recipe: recipe.recipe,
-      result,
-      labels: kept.map((frame) => facts.get(frame)?.label ?? null),
-      energies: level ? valuesOf(level, ensemble.frames, result.kept) : kept.map(() => null),
-      positions,
-      temperature: recipe.temperature,
-      weights: recipe.weights,
-      columns: contentColumns,
-      properties,
-      version,
-    },
+    team: options.team,
+    ensemble: described,
+    inputs: { files: options.files, framesSha256: collected.framesSha256 },
+    level,
+    recipe: recipe.recipe,
+    result,
+    labels: collected.labels,
+    energies: own ? own.values : result.kept.map(() => null),
+    positions: collected.positions,
+    temperature: recipe.temperature,
+    weights: recipe.weights,
+    columns: options.contentVersion === 1 ? all.map(asFirst) : all,
+    properties: await mergeAtoms(ensemble, result.kept, properties),
+    version: options.version,
+    contentVersion: options.contentVersion,
+    sigma: recipe.sigma,
+    sigmaFrom: recipe.sigmaFrom,
+    seed: recipe.seed,
+    temperatures: recipe.temperatures,
+    moment: options.moment,
   };
+}
+
+/** A column as content 1 has it. */
+function asFirst({ quantity: _quantity, atom: _atom, ...column }: EditionContent["columns"][number]) {
+  return column;
 }
 
 /** The files of an ensemble as an edition lists them. */

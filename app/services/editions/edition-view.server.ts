@@ -1,4 +1,5 @@
 import { citationBibtex, citationCff, citationText } from "../../lib/edition/citation.ts";
+import type { EditionContent } from "../../lib/edition/content.ts";
 import { averagedProperties } from "../../lib/edition/counters.ts";
 import { editionRows } from "../../lib/edition/rows.ts";
 import { shownRows } from "../../lib/edition/shown.ts";
@@ -14,15 +15,17 @@ const DECIMALS = 4;
 /** What a page says of the last recomputation. */
 export function verifiedView(last: LastVerification | null): VerifiedView | null {
   if (last === null) return null;
-  const differing = last.files.filter(({ was, is }) => was !== is);
+  const compared = last.files.filter(({ note }) => note === undefined);
+  const differing = compared.filter(({ was, is }) => was !== is);
   return {
     same: last.same,
     at: last.at,
     version: last.version,
     seconds: last.seconds,
-    files: last.files.length,
-    agree: last.files.length - differing.length,
+    files: compared.length,
+    agree: compared.length - differing.length,
     differing,
+    inputs: last.files.flatMap(({ name, note }) => (note === undefined ? [] : [{ name, note }])),
   };
 }
 
@@ -35,6 +38,22 @@ function shapesOf(edition: FoundEdition, positions: Float64Array): EditionShape[
       Number(value.toFixed(DECIMALS)),
     ),
   }));
+}
+
+/** Averages at the temperatures of those properties that the page shows, and populations of the rows that it has. */
+function temperaturesView({
+  averages,
+  temperatures,
+  ...content
+}: EditionContent): EditionView["temperatures"] {
+  if (temperatures === null) return null;
+  const shown = averagedProperties({ averages, ...content }) ?? [];
+  const places = shown.map((row) => averages?.indexOf(row) ?? -1);
+  return {
+    ...temperatures,
+    populations: temperatures.populations.map((shares) => shares.slice(0, MOST_ROWS)),
+    averages: temperatures.averages.map((list) => places.map((place) => list[place] ?? null)),
+  };
 }
 
 /**
@@ -81,6 +100,12 @@ export async function toEditionView(
     caution: content.caution,
     findings: content.findings,
     averages: averagedProperties(content),
+    uncertainty: content.uncertainty && {
+      ...content.uncertainty,
+      populations: content.uncertainty.populations.slice(0, MOST_ROWS),
+    },
+    temperatures: temperaturesView(content),
+    open: content.open,
     rows: editionRows(content).slice(0, MOST_ROWS),
     conformers: content.kept.length,
     extents: content.kept.slice(0, MOST_ROWS).map(({ extent }) => extent),

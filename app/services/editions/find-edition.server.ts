@@ -101,6 +101,8 @@ export const verifiedFileSchema = z.object({
   was: z.string(),
   /** Null where it could not be made: an input is gone or is another. */
   is: z.string().nullable(),
+  /** Set for what went in, not out: why it is not what it was, and what was taken instead. */
+  note: z.string().optional(),
 });
 export type VerifiedFile = z.infer<typeof verifiedFileSchema>;
 

@@ -3,8 +3,13 @@ import { z } from "zod";
 import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { columns, editions, ensembles } from "../../db/schema.server.ts";
-import { buildContent } from "../../lib/edition/build.ts";
-import { canonicalJson } from "../../lib/edition/canonical-json.ts";
+import {
+  DEFAULT_ERROR_KCAL,
+  DEFAULT_TEMPERATURES,
+  MAX_ERROR_KCAL,
+  MAX_TEMPERATURES,
+} from "../../lib/averages/averages-state.ts";
+import { DEFAULT_SEED } from "../../lib/averages/uncertainty.ts";
 import { compareEditions, firstWords } from "../../lib/edition/compare.ts";
 import {
   type EditionContent,
@@ -12,7 +17,9 @@ import {
   type EditionRecipe,
   editionContentSchema,
 } from "../../lib/edition/content.ts";
+import { contentText } from "../../lib/edition/content-text.ts";
 import { editionFiles } from "../../lib/edition/edition-files.ts";
+import { deviationFrom } from "../../lib/edition/sections.ts";
 import { shownRows } from "../../lib/edition/shown.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { TEMPERATURE_RANGE_K } from "../../lib/url-state.ts";
@@ -20,22 +27,31 @@ import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
 import { notFound } from "../http.server.ts";
 import { type Doer, writeEntry } from "../logbook/write-entry.server.ts";
-import { findSift } from "../sifts/find-sift.server.ts";
+import { type FoundSift, findSift } from "../sifts/find-sift.server.ts";
 import { needResult } from "../sifts/populations.server.ts";
+import { drawContent } from "./draw-uncertainty.server.ts";
 import { type PackedFile, packFile, storeFiles } from "./edition-files.server.ts";
 import {
-  type CollectedEdition,
-  collectEdition,
+  collectFrames,
   columnIds,
+  columnRows,
+  contentColumn,
+  contentLevel,
   describeForEdition,
+  editionSource,
   editionSources,
+  frameEnergies,
+  framesOf,
 } from "./edition-source.server.ts";
 import { citationFiles, type ManifestInput, manifestFile } from "./manifest.ts";
+import { momentItems } from "./moment-items.server.ts";
 import { EDITION_CODE_VERSION, productVersion } from "./product-version.ts";
 
 /** Conformers whose coordinates go along for pictures and the 3D view; the files hold all. */
 const MOST_SHOWN = 300;
 const SHOWN_BYTES = 4 * 2 ** 20;
+
+const ID = /^[a-z2-7]{16}$/;
 
 export const freezeSchema = z.strictObject({
   sift: z.string().max(40),
@@ -43,8 +59,17 @@ export const freezeSchema = z.strictObject({
   weights: z.enum(["auto", "copies", "degeneracy"]),
   title: z.string().trim().max(200, "A title has up to 200 characters."),
   remark: z.string().trim().max(4000, "A remark has up to 4,000 characters."),
+  /** Error of the level, kcal/mol, one standard deviation; 0 draws nothing. */
+  sigma: z.number().min(0).max(MAX_ERROR_KCAL).default(DEFAULT_ERROR_KCAL),
+  /** Id of the level that the error was taken against. */
+  sigmaFrom: z.string().regex(ID).nullable().default(null),
+  /** K, shown beside the one that the populations are taken at. */
+  temperatures: z
+    .array(z.number().min(TEMPERATURE_RANGE_K[0]).max(TEMPERATURE_RANGE_K[1]))
+    .max(MAX_TEMPERATURES)
+    .default(DEFAULT_TEMPERATURES),
 });
-export type FreezeRequest = z.infer<typeof freezeSchema>;
+export type FreezeRequest = z.input<typeof freezeSchema>;
 
 export interface FrozenEdition {
   id: string;
@@ -116,46 +141,92 @@ interface Prepared {
   ensemble: EnsembleRow;
   team: string;
   recipe: EditionRecipe;
+  inputs: EditionInputs;
   content: EditionContent;
   text: string;
-  collected: CollectedEdition;
+  positions: Float64Array;
   files: PackedFile[];
 }
 
-async function prepare(at: At, request: FreezeRequest): Promise<Prepared> {
-  const { ensemble, team } = await findEnsembleRow(at.teamId, at.ensembleId);
-  const sift = await findSift(request.sift);
-  if (sift.ensembleId !== ensemble.id) throw notFound();
-  const { seconds: _seconds, ...result } = await needResult(sift);
-  if (!sift.current) {
-    throw new DomainError(
-      "conflict",
-      "The distinct set is out of date",
-      "Frames or energies changed after this sift. Sift again, look at the result, then freeze it.",
-    );
-  }
-  const recipe: EditionRecipe = {
+async function recipeOf(
+  ensembleId: string,
+  sift: FoundSift,
+  asked: z.output<typeof freezeSchema>,
+): Promise<EditionRecipe> {
+  const ids = await columnIds(ensembleId);
+  return {
     sift: sift.id,
     recipe: sift.recipe,
-    temperature: request.temperature,
-    weights: request.weights,
-    columns: await columnIds(ensemble.id),
+    temperature: asked.temperature,
+    weights: asked.weights,
+    columns: ids,
+    sigma: sift.recipe.level === null || asked.sigma === 0 ? null : asked.sigma,
+    sigmaFrom: null,
+    seed: DEFAULT_SEED,
+    temperatures: [...asked.temperatures].sort((a, b) => a - b),
     changed: [],
   };
-  const collected = await collectEdition({
-    ensemble,
+}
+
+async function prepare(at: At, request: FreezeRequest): Promise<Prepared> {
+  const asked = freezeSchema.parse(request);
+  const { ensemble, team } = await findEnsembleRow(at.teamId, at.ensembleId);
+  const sift = await findSift(asked.sift);
+  if (sift.ensembleId !== ensemble.id) throw notFound();
+  const { seconds: _seconds, ...result } = await needResult(sift);
+  if (!sift.current) throw outOfDate();
+  const plain = await recipeOf(ensemble.id, sift, asked);
+  const shown = await columnRows(ensemble.id, plain.columns);
+  const frames = await collectFrames(ensemble, result);
+  if (frames === null) throw outOfDate();
+  const files = await editionSources(ensemble.id);
+  const level = shown.find(({ id }) => id === sift.recipe.level) ?? null;
+  const kept = shown.map((column) => contentColumn(column, ensemble.frames, result.kept));
+  const recipe = { ...plain, ...errorFrom(shown, kept, sift, asked.sigmaFrom) };
+  const source = await editionSource({
+    ...{ ensemble, recipe, result, files, frames },
     described: describeForEdition(ensemble),
     team: team.name,
-    recipe,
-    result,
-    files: await editionSources(ensemble.id),
+    level: level && contentLevel(level),
+    columns: kept,
     version: productVersion(EDITION_CODE_VERSION),
-    frozen: null,
+    contentVersion: 2,
+    moment: await momentItems(sift),
   });
-  const content = buildContent(collected.source);
-  const files: PackedFile[] = [];
-  for (const file of editionFiles(content, collected.positions)) files.push(await packFile(file));
-  return { ensemble, team: team.name, recipe, content, text: canonicalJson(content), collected, files };
+  const content = await drawContent(source);
+  const energies = frameEnergies(level, ensemble.frames, framesOf(result));
+  const packed: PackedFile[] = [];
+  for (const file of editionFiles(content, frames.positions, energies)) packed.push(await packFile(file));
+  return {
+    ...{ ensemble, team: team.name, recipe, content, positions: frames.positions },
+    inputs: {
+      files: files.map(({ name, sha256 }, position) => ({ position, name, sha256 })),
+      frames: frames.framesSha256,
+      columns: shown.map(({ id, name }, k) => ({ id, name, sha256: kept[k]?.sha256 ?? "" })),
+    },
+    text: contentText(content),
+    files: packed,
+  };
+}
+
+/** The error of the level taken against another one, where that was asked for and can be done. */
+function errorFrom(
+  rows: readonly { id: string; name: string }[],
+  kept: EditionContent["columns"],
+  sift: FoundSift,
+  sigmaFrom: string | null,
+): Partial<Pick<EditionRecipe, "sigma" | "sigmaFrom">> {
+  const against = rows.find(({ id }) => id === sigmaFrom);
+  const sigma = against ? deviationFrom(kept, sift.recipe.levelName, against.name) : null;
+  return against === undefined || sigma === null ? {} : { sigma, sigmaFrom: against.name };
+}
+
+function outOfDate(): DomainError {
+  return new DomainError(
+    "conflict",
+    "The distinct set is out of date",
+    "Frames or energies changed after this sift. Sift again, look at the result, then freeze it.",
+  );
 }
 
 /**
@@ -164,10 +235,10 @@ async function prepare(at: At, request: FreezeRequest): Promise<Prepared> {
  * @throws DomainError conflict while the sift is not done, is out of date, or the ensemble changes meanwhile
  */
 export async function freezeFor(at: At, request: FreezeRequest): Promise<FrozenEdition> {
-  const { ensemble, team, recipe, content, text, collected, files } = await prepare(at, request);
+  const { ensemble, team, recipe, inputs, content, text, positions, files } = await prepare(at, request);
   const contentSha256 = files.find(({ name }) => name === "results.json")?.sha256 ?? "";
   return inTransaction(async (tx) => {
-    await lockUnchanged(tx, ensemble, collected.inputs);
+    await lockUnchanged(tx, ensemble, inputs);
     const { number, changed } = await nextEdition(tx, ensemble.id, content);
     const createdAt = new Date();
     const told: ManifestInput = {
@@ -193,11 +264,11 @@ export async function freezeFor(at: At, request: FreezeRequest): Promise<FrozenE
       title: request.title,
       remark: request.remark,
       recipe: { ...recipe, changed },
-      inputs: collected.inputs,
+      inputs,
       codeVersion: EDITION_CODE_VERSION,
       content: text,
       contentSha: Buffer.from(contentSha256, "hex"),
-      positions: shownPositions(content, collected.positions),
+      positions: shownPositions(content, positions),
       files: all.map(({ name, bytes, sha256 }) => ({ name, bytes, sha256 })),
       createdBy: at.userId,
       createdAt,
@@ -218,5 +289,5 @@ export async function freezeEdition(options: {
   request: FreezeRequest;
 }): Promise<FrozenEdition> {
   const grant = await accessEnsemble(options.actor, "share", options.ensembleId);
-  return freezeFor(grant, freezeSchema.parse(options.request));
+  return freezeFor(grant, options.request);
 }

@@ -2,13 +2,14 @@ import { and, desc, eq } from "drizzle-orm";
 import { z } from "zod";
 import { db } from "../../db/client.server.ts";
 import { editions, teams, users } from "../../db/schema.server.ts";
-import { compareEditions, firstWords } from "../../lib/edition/compare.ts";
+import { changesSince, compareEditions, firstWords } from "../../lib/edition/compare.ts";
 import { editionFileSchema, editionRecipeSchema } from "../../lib/edition/content.ts";
 import type { EditionRow, HandOverView, LinkRow } from "../../lib/edition/views.ts";
 import { type Actor, accessEnsemble, roleMay } from "../auth/access.server.ts";
 import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
 import { findLinks } from "../links/list-links.server.ts";
 import { findSift } from "../sifts/find-sift.server.ts";
+import { findVerifying } from "./ask-to-verify.server.ts";
 import { draftEdition } from "./draft-edition.server.ts";
 import { verifiedView } from "./edition-view.server.ts";
 import { findEdition, lastVerification } from "./find-edition.server.ts";
@@ -39,6 +40,7 @@ async function findRows(at: At, links: readonly LinkRow[]): Promise<Row[]> {
     .where(and(eq(editions.teamId, at.teamId), eq(editions.ensembleId, at.ensembleId)))
     .orderBy(desc(editions.number))
     .limit(MOST_EDITIONS);
+  const verifying = await findVerifying(at.teamId);
   return Promise.all(
     rows.map(async ({ createdAt, recipe, contentSha, codeVersion, files, ...row }) => ({
       ...row,
@@ -49,6 +51,7 @@ async function findRows(at: At, links: readonly LinkRow[]): Promise<Row[]> {
       version: productVersion(codeVersion),
       files: z.array(editionFileSchema).parse(files),
       verified: verifiedView(await lastVerification(row.id)),
+      verifying: verifying.get(row.id) ?? null,
     })),
   );
 }
@@ -57,16 +60,20 @@ interface Shown {
   siftId: string | null;
   temperature: number;
   weights: "auto" | "copies" | "degeneracy";
+  /** Error of the level as the address has it; left out, the usual one. */
+  error?: { sigmaKcal: number | null; sigmaFrom: string | null };
 }
 
+const NO_ERROR = { sigmaKcal: null, sigmaFrom: null };
+
 /** What an edition would say now; null without a finished sift of this ensemble. */
-async function draftOf(at: At, { siftId, temperature, weights }: Shown) {
+async function draftOf(at: At, { siftId, temperature, weights, error = NO_ERROR }: Shown) {
   if (siftId === null) return null;
   const sift = await findSift(siftId);
   if (sift.ensembleId !== at.ensembleId) return null;
   const { ensemble, team } = await findEnsembleRow(at.teamId, at.ensembleId);
-  const content = await draftEdition({ ensemble, team: team.name, sift, temperature, weights });
-  return content && { content, current: sift.current };
+  const draft = await draftEdition({ ensemble, team: team.name, sift, temperature, weights, error });
+  return draft && { ...draft, current: sift.current };
 }
 
 async function nextOf(
@@ -76,11 +83,11 @@ async function nextOf(
 ): Promise<HandOverView["next"]> {
   // Only what stands on the frames as they are can be frozen.
   if (draft === null || !draft.current) return null;
-  const { content } = draft;
-  const findings = content.findings.filter(({ kind }) => kind === "open");
-  if (last === undefined) return { number: 1, changed: [firstWords(content)], findings };
+  const { content, sigma } = draft;
+  const { open } = content;
+  if (last === undefined) return { number: 1, changed: [firstWords(content)], open, sigma };
   const before = await findEdition(at.teamId, last.id);
-  return { number: last.number + 1, changed: compareEditions(before.content, content).words, findings };
+  return { number: last.number + 1, changed: changesSince(before.content, content), open, sigma };
 }
 
 /** Two editions by their numbers, the earlier first; null where one of them is not there. */

@@ -26,6 +26,7 @@ const TYPES: Record<string, string> = {
   sdf: "chemical/x-mdl-sdfile; charset=utf-8",
   csv: "text/csv; charset=utf-8",
   json: "application/json; charset=utf-8",
+  svg: "image/svg+xml; charset=utf-8",
   txt: "text/plain; charset=utf-8",
   bib: "text/plain; charset=utf-8",
   cff: "text/plain; charset=utf-8",
@@ -47,6 +48,25 @@ async function* conformerEntries(teamId: string, editionId: string) {
   for (const { name, text } of conformerFiles(content, xyz)) yield { name, data: Buffer.from(text, "utf8") };
 }
 
+/** What a zip of that name holds; null for any other name, and where there is nothing to pack. */
+function packedEntries(
+  { teamId, editionId }: { teamId: string; editionId: string },
+  name: string,
+  files: readonly EditionFile[],
+) {
+  if (name === "bundle.zip") return storedEntries(editionId, files);
+  if (name === "conformers.zip") return conformerEntries(teamId, editionId);
+  const figures = files.filter((file) => file.name.endsWith(".svg"));
+  return name === "figures.zip" && figures.length > 0 ? figureEntries(editionId, figures) : null;
+}
+
+/** The figures with a list of their checksums, as the manifest of the bundle has them. */
+async function* figureEntries(editionId: string, figures: readonly EditionFile[]) {
+  yield* storedEntries(editionId, figures);
+  const list = figures.map(({ name, sha256 }) => `${sha256}  ${name}\n`).join("");
+  yield { name: "SHA256SUMS", data: Buffer.from(list, "utf8") };
+}
+
 /**
  * A file of an edition as it was handed out first; the bundle and the files a conformer are packed from those. Access has
  * been decided before.
@@ -60,9 +80,8 @@ export async function openEditionFile(
   called: string,
 ): Promise<EditionDownload> {
   const files = await findEditionFiles(at.teamId, at.editionId);
-  if (name === "bundle.zip" || name === "conformers.zip") {
-    const entries =
-      name === "bundle.zip" ? storedEntries(at.editionId, files) : conformerEntries(at.teamId, at.editionId);
+  const entries = packedEntries(at, name, files);
+  if (entries !== null) {
     return { name: `${called} ${name}`, type: "application/zip", bytes: null, chunks: zipped(entries) };
   }
   const file = files.find((one) => one.name === name);

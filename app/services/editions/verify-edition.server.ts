@@ -3,8 +3,6 @@ import { and, eq } from "drizzle-orm";
 import { db, inTransaction } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { editions, ensembleFiles, ensembles, verifications } from "../../db/schema.server.ts";
-import { unpackColumn } from "../../lib/column-data.ts";
-import { buildContent } from "../../lib/edition/build.ts";
 import {
   type EditionContent,
   type EditionInputs,
@@ -12,53 +10,65 @@ import {
   editionInputsSchema,
   editionRecipeSchema,
 } from "../../lib/edition/content.ts";
+import { contentText } from "../../lib/edition/content-text.ts";
 import { editionFiles } from "../../lib/edition/edition-files.ts";
-import { DomainError } from "../../lib/errors.ts";
+import { MOMENT_CODES } from "../../lib/edition/open.ts";
+import { type FrameEnergy, readFrameEnergies } from "../../lib/edition/tables.ts";
 import type { SiftResult } from "../../lib/recipe/result.ts";
 import { ENERGY_UNITS, kcalPer } from "../../lib/units.ts";
-import { type Actor, accessEdition } from "../auth/access.server.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
 import { unpackMolecule } from "../ensembles/molecule.server.ts";
 import { readSource } from "../ensembles/source-writer.server.ts";
 import { notFound } from "../http.server.ts";
+import { finishJob } from "../jobs/finish-job.server.ts";
+import { type JobRun, JobStopped } from "../jobs/job-run.ts";
 import { computeSift } from "../jobs/pool.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
-import { packFile } from "./edition-files.server.ts";
-import { collectEdition, columnRows, framesOf, ownFrames } from "./edition-source.server.ts";
+import { drawContent } from "./draw-uncertainty.server.ts";
+import { packFile, readWholeFile } from "./edition-files.server.ts";
+import {
+  type CollectedFrames,
+  collectFrames,
+  columnRows,
+  contentColumn,
+  editionSource,
+  frameEnergies,
+  framesOf,
+  ownFrames,
+} from "./edition-source.server.ts";
 import { type FoundEdition, findEdition, type VerifiedFile } from "./find-edition.server.ts";
+import { readKeptPositions } from "./kept-positions.ts";
 import { citationFiles, type ManifestInput, manifestFile } from "./manifest.ts";
 import { EDITION_CODE_VERSION } from "./product-version.ts";
 
-/** Longest that a computation may take before whoever waits for it is told to come again. */
-const PATIENCE_MS = 10 * 60_000;
-
-export interface Verification {
-  same: boolean;
-  files: VerifiedFile[];
-  seconds: number;
-}
-
 type EnsembleRow = typeof ensembles.$inferSelect;
+type Result = Omit<SiftResult, "seconds">;
 
 interface Frozen {
+  teamId: string;
   edition: FoundEdition;
   ensemble: EnsembleRow;
   recipe: EditionRecipe;
   inputs: EditionInputs;
 }
 
-async function load(teamId: string, editionId: string): Promise<Frozen> {
-  const edition = await findEdition(teamId, editionId);
+async function load(editionId: string): Promise<Frozen> {
   const rows = await db
-    .select({ ensemble: ensembles, recipe: editions.recipe, inputs: editions.inputs })
+    .select({
+      teamId: editions.teamId,
+      ensemble: ensembles,
+      recipe: editions.recipe,
+      inputs: editions.inputs,
+    })
     .from(editions)
-    .innerJoin(ensembles, eq(ensembles.id, editions.ensembleId))
-    .where(and(eq(editions.id, editionId), eq(ensembles.teamId, teamId)))
+    .innerJoin(ensembles, and(eq(ensembles.id, editions.ensembleId), eq(ensembles.teamId, editions.teamId)))
+    .where(eq(editions.id, editionId))
     .limit(1);
   const row = rows[0];
   if (row === undefined) throw notFound();
   return {
-    edition,
+    teamId: row.teamId,
+    edition: await findEdition(row.teamId, editionId),
     ensemble: row.ensemble,
     recipe: editionRecipeSchema.parse(row.recipe),
     inputs: editionInputsSchema.parse(row.inputs),
@@ -82,41 +92,117 @@ async function rehashSources(ensembleId: string, inputs: EditionInputs): Promise
   return found;
 }
 
-/** Inputs that are not what they were, with both checksums. */
-async function changedInputs(frozen: Frozen): Promise<VerifiedFile[]> {
-  const { ensemble, inputs } = frozen;
+/** Original files that are not what they were. */
+async function changedSources({ ensemble, inputs }: Frozen): Promise<VerifiedFile[]> {
   const sources = await rehashSources(ensemble.id, inputs);
-  const columns = new Map(
-    (
-      await columnRows(
-        ensemble.id,
-        inputs.columns.map(({ id }) => id),
-      )
-    ).map((row) => [row.id, row]),
+  return inputs.files
+    .map(({ name, sha256 }) => ({ name: `input ${name}`, was: sha256, is: sources.get(name) ?? null }))
+    .filter(({ was, is }) => was !== is)
+    .map((one) => ({
+      ...one,
+      note: `The original file ${one.is === null ? "is not there any more" : "holds other bytes now"}; frames and columns were read from it then.`,
+    }));
+}
+
+/** What an edition is computed from again, and what of it had to be taken from the edition itself. */
+interface Inputs {
+  columns: EditionContent["columns"];
+  /** Of every frame that took part; null where nothing holds them any more. */
+  energies: FrameEnergy[] | null;
+  notes: VerifiedFile[];
+}
+
+const sameValues = (a: readonly (number | null)[], b: readonly (number | null)[]) =>
+  a.length === b.length && a.every((value, k) => value === b[k]);
+
+/**
+ * The columns of an edition: as stored where their numbers are those that it used, else as the edition kept them. A table
+ * that only grew since holds the same numbers.
+ */
+async function readColumns(frozen: Frozen): Promise<Inputs> {
+  const { edition, ensemble, recipe, inputs } = frozen;
+  const { content } = edition;
+  const numbers = framesOf(content);
+  const kept = await keptEnergies(edition);
+  let energies: FrameEnergy[] | null =
+    recipe.recipe.level === null ? numbers.map((frame) => ({ frame, energy: null })) : kept;
+  const notes: VerifiedFile[] = [];
+  const columns: EditionContent["columns"] = [];
+  for (const [k, { id, name, sha256: was }] of inputs.columns.entries()) {
+    const frozenColumn = content.columns[k];
+    if (frozenColumn === undefined) throw new Error(`Column ${name} is none of the edition.`);
+    const [row] = await columnRows(ensemble.id, [id]);
+    const now = row && contentColumn(row, ensemble.frames, content.kept);
+    const isLevel = id === recipe.recipe.level;
+    const own = isLevel && row ? frameEnergies(row, ensemble.frames, numbers) : null;
+    const used =
+      now !== undefined &&
+      (now.sha256 === was ||
+        (sameValues(now.values, frozenColumn.values) && (!isLevel || sameEnergies(own, kept))));
+    // Names, units and rules are as they were frozen; of the first editions the atom stands in the table alone.
+    const { quantity = now?.quantity ?? null, atom = now?.atom ?? null } = frozenColumn;
+    columns.push({ ...frozenColumn, quantity, atom, ...(used ? { values: now.values } : {}) });
+    if (used && isLevel) energies = own;
+    if (!used) notes.push(goneColumn(name, was, now?.sha256 ?? null));
+  }
+  return { columns, energies, notes };
+}
+
+function goneColumn(name: string, was: string, is: string | null): VerifiedFile {
+  return {
+    name: `column ${name}`,
+    was,
+    is,
+    note: `${is === null ? "The column is not there any more" : "The column holds other numbers now"}; those that the edition keeps were taken.`,
+  };
+}
+
+/** Energies that the edition kept itself; null in the first ones. */
+async function keptEnergies({ id, files }: FoundEdition): Promise<FrameEnergy[] | null> {
+  if (!files.some(({ name }) => name === "frames.csv")) return null;
+  return readFrameEnergies((await readWholeFile(id, "frames.csv")).toString("utf8"));
+}
+
+function sameEnergies(own: FrameEnergy[] | null, kept: FrameEnergy[] | null): boolean {
+  // Where the edition keeps none the sift that follows shows whether they are the same.
+  if (own === null || kept === null) return own !== null;
+  return sameValues(
+    own.map(({ energy }) => energy),
+    kept.map(({ energy }) => energy),
   );
-  const checks: VerifiedFile[] = [
-    ...inputs.files.map(({ name, sha256 }) => ({
-      name: `input ${name}`,
-      was: sha256,
-      is: sources.get(name) ?? null,
-    })),
-    ...inputs.columns.map(({ id, name, sha256 }) => {
-      const data = columns.get(id)?.data;
-      const is = data ? createHash("sha256").update(data).digest("hex") : null;
-      return { name: `column ${name}`, was: sha256, is };
-    }),
-  ];
-  return checks.filter(({ was, is }) => was !== is);
+}
+
+/** Frames as they are stored, or, where they are not those that took part, the conformers as the edition keeps them. */
+async function readFrames({
+  edition,
+  ensemble,
+}: Frozen): Promise<{ frames: CollectedFrames; same: boolean }> {
+  const { content } = edition;
+  const was = content.inputs.framesSha256;
+  const now = await collectFrames(ensemble, content);
+  if (now !== null && now.framesSha256 === was) return { frames: now, same: true };
+  const xyz = (await readWholeFile(edition.id, "distinct-set.xyz")).toString("utf8");
+  return {
+    same: false,
+    frames: {
+      framesSha256: was,
+      positions: readKeptPositions(xyz, content.kept.length, content.ensemble.atoms),
+      labels: content.kept.map(({ label }) => label),
+    },
+  };
 }
 
 /** Runs the recipe again in a thread, on the frames that took part then, whatever was held or released since. */
-async function siftAgain({ edition, ensemble, recipe }: Frozen): Promise<Omit<SiftResult, "seconds">> {
+async function siftAgain(
+  { edition, ensemble, recipe }: Frozen,
+  energies: readonly FrameEnergy[],
+  run: JobRun,
+): Promise<Result> {
   const { content } = edition;
   const numbers = Int32Array.from(framesOf(content));
   const places = await ownFrames(ensemble.id);
   const indices = Array.from(numbers, (number) => places.get(number)?.index ?? -1);
   const graph = unpackMolecule(ensemble);
-  const level = (await columnRows(ensemble.id, recipe.recipe.level === null ? [] : [recipe.recipe.level]))[0];
   const answer = await computeSift(
     {
       elements: graph.elements,
@@ -125,50 +211,45 @@ async function siftAgain({ edition, ensemble, recipe }: Frozen): Promise<Omit<Si
       atoms: ensemble.atoms,
       positions: await loadPositions(ensemble.id, ensemble.atoms, indices),
       numbers,
-      energies: level
-        ? energiesOf({ data: level.data, unit: content.level?.unit ?? level.unit }, ensemble.frames, numbers)
-        : null,
+      energies: content.level && taskEnergies(content.level.unit, energies, numbers),
       recipe: recipe.recipe,
-      cancel: new Int32Array(new SharedArrayBuffer(4)),
+      cancel: run.cancel,
     },
-    { progress: () => {}, signal: AbortSignal.timeout(PATIENCE_MS) },
+    { progress: (fraction, pairs) => run.progress(0.1 + 0.7 * fraction, pairs), signal: run.signal },
   );
-  if (answer.kind === "cancelled") throw new Error("The computation was stopped.");
+  if (answer.kind === "cancelled") throw new JobStopped(`The recomputation of ${edition.id} was stopped.`);
   const { seconds: _seconds, ...result } = answer.result;
   return { ...result, held: content.held };
 }
 
-function energiesOf(
-  level: { data: Uint8Array; unit: string | null },
-  frameCount: number,
-  numbers: Int32Array,
-) {
-  const all = unpackColumn(level.data, frameCount);
-  const unit = ENERGY_UNITS.find((one) => one === level.unit);
-  if (unit === undefined) throw new Error(`A level has the unit ${level.unit}, which is no unit of energy.`);
+function taskEnergies(unit: string, energies: readonly FrameEnergy[], numbers: Int32Array) {
+  const known = ENERGY_UNITS.find((one) => one === unit);
+  if (known === undefined) throw new Error(`A level has the unit ${unit}, which is no unit of energy.`);
+  const byFrame = new Map(energies.map(({ frame, energy }) => [frame, energy]));
+  const values = Array.from(numbers, (number) => byFrame.get(number) ?? null);
   return {
-    values: Float64Array.from(numbers, (number) => all.values[number - 1] ?? 0),
-    present: Uint8Array.from(numbers, (number) => all.present[number - 1] ?? 0),
-    kcalPerUnit: kcalPer(unit),
+    values: Float64Array.from(values, (value) => value ?? 0),
+    present: Uint8Array.from(values, (value) => (value === null ? 0 : 1)),
+    kcalPerUnit: kcalPer(known),
   };
 }
 
+/** Content as it comes out now; where only sentences are worded otherwise by now, with those that were frozen. */
+function settleWords(content: EditionContent, frozen: EditionContent): EditionContent {
+  const { words, findings, open } = frozen;
+  const worded = { ...content, words, findings, open };
+  return contentText(worded) === contentText(frozen) ? worded : content;
+}
+
 /** Writes every file of the edition again and compares it with what was handed out, byte for byte by its checksum. */
-async function compareFiles(frozen: Frozen, result: Omit<SiftResult, "seconds">): Promise<VerifiedFile[]> {
-  const { edition, ensemble, recipe } = frozen;
-  const collected = await collectEdition({
-    ensemble,
-    described: edition.content.ensemble,
-    team: edition.content.team,
-    recipe,
-    result,
-    files: edition.content.inputs.files,
-    version: edition.version,
-    frozen: edition.content,
-  });
-  const content = buildContent(collected.source);
+async function compareFiles(
+  edition: FoundEdition,
+  content: EditionContent,
+  positions: Float64Array,
+  energies: readonly FrameEnergy[],
+): Promise<VerifiedFile[]> {
   const made = [];
-  for (const file of editionFiles(content, collected.positions)) made.push(await packFile(file, false));
+  for (const file of editionFiles(content, positions, energies)) made.push(await packFile(file, false));
   const told = toldOf(edition, content, made.find(({ name }) => name === "results.json")?.sha256 ?? "");
   for (const file of citationFiles(told)) made.push(await packFile(file, false));
   made.push(await packFile(manifestFile(told, made), false));
@@ -191,54 +272,83 @@ function toldOf(edition: FoundEdition, content: EditionContent, contentSha256: s
   };
 }
 
-async function recompute(frozen: Frozen): Promise<VerifiedFile[]> {
-  const changed = await changedInputs(frozen);
-  if (changed.length > 0) {
-    return [...changed, ...frozen.edition.files.map(({ name, sha256 }) => ({ name, was: sha256, is: null }))];
+function notSifted(why: string, was: string): VerifiedFile {
+  return {
+    name: "sift",
+    was,
+    is: null,
+    note: `${why}: the sift was not run again. Everything after it was, from the distinct set that the edition keeps.`,
+  };
+}
+
+async function recompute(frozen: Frozen, run: JobRun): Promise<VerifiedFile[]> {
+  const { edition, ensemble, recipe } = frozen;
+  const sources = await changedSources(frozen);
+  const { columns, energies, notes } = await readColumns(frozen);
+  const { frames, same } = await readFrames(frozen);
+  run.progress(0.1);
+  const again = same && energies !== null;
+  if (!again) {
+    const why = same
+      ? "The energies of the frames are not kept anywhere"
+      : "The frames are not those of then";
+    notes.push(notSifted(why, edition.content.inputs.framesSha256));
   }
-  return compareFiles(frozen, await siftAgain(frozen));
+  const result: Result = again ? await siftAgain(frozen, energies, run) : edition.content;
+  run.progress(0.8);
+  const source = await editionSource({
+    ...{ ensemble, recipe, result, columns, frames },
+    described: edition.content.ensemble,
+    team: edition.content.team,
+    files: edition.content.inputs.files,
+    level: edition.content.level,
+    version: edition.version,
+    contentVersion: edition.content.version,
+    moment: edition.content.open.filter(({ code }) => MOMENT_CODES.some((one) => one === code)),
+  });
+  const content = settleWords(await drawContent(source), edition.content);
+  run.progress(0.9);
+  const files = await compareFiles(edition, content, frames.positions, energies ?? []);
+  return [...files, ...sources, ...notes];
 }
 
 /**
  * Recomputes an edition from the stored bytes and compares every file: the original files are hashed again, the recipe runs
- * again in a thread, all files are written again. What came out is kept.
+ * again in a thread, all files are written again. What came out is kept. An input that is gone or another is named, and
+ * what the edition itself keeps stands in for it.
  */
-export async function verifyEdition(options: {
-  actor: Actor;
-  ensembleId: string;
-  number: number;
-}): Promise<Verification> {
-  const grant = await accessEdition(options.actor, "share", options.ensembleId, options.number);
+export async function runVerification(
+  { editionId, userId }: { editionId: string; userId: string | null },
+  run: JobRun,
+): Promise<void> {
   const started = performance.now();
-  const frozen = await load(grant.teamId, grant.editionId);
-  const files = await recompute(frozen).catch((error: unknown) => {
-    if (error instanceof Error && error.name === "AbortError") {
-      throw new DomainError(
-        "unavailable",
-        "Not verified yet",
-        "The server is busy with other work. Try again in a while.",
-      );
-    }
-    throw error;
-  });
-  const same = files.every(({ was, is }) => was === is);
+  const frozen = await load(editionId);
+  const files = await recompute(frozen, run);
+  const compared = files.filter(({ note }) => note === undefined);
+  const agree = compared.filter(({ was, is }) => was === is).length;
+  const same = agree === compared.length;
   const seconds = (performance.now() - started) / 1000;
+  const { teamId, ensemble, edition } = frozen;
   await inTransaction(async (tx) => {
     await tx.insert(verifications).values({
       id: newId(),
-      editionId: grant.editionId,
+      editionId,
       same,
       files,
       codeVersion: EDITION_CODE_VERSION,
       seconds,
-      createdBy: grant.userId,
+      createdBy: userId,
       createdAt: new Date(),
     });
-    const agree = files.filter(({ was, is }) => was === is).length;
-    await writeEntry(tx, grant, grant, {
-      type: "edition-verified",
-      data: { number: grant.number, same, files: files.length, agree },
-    });
+    await writeEntry(
+      tx,
+      { teamId, ensembleId: ensemble.id },
+      { userId, tokenId: null },
+      {
+        type: "edition-verified",
+        data: { number: edition.number, same, files: compared.length, agree },
+      },
+    );
+    await finishJob(tx, run.jobId, run.holder);
   });
-  return { same, files, seconds };
 }

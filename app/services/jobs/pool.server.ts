@@ -8,6 +8,8 @@ import { env } from "../../env.server.ts";
 import {
   type AveragesAnswer,
   type AveragesTask,
+  type DrawAnswer,
+  type DrawTask,
   type MatchAnswer,
   type MatchTask,
   type MatrixAnswer,
@@ -140,6 +142,20 @@ export async function computeMatch(task: Omit<MatchTask, "kind">): Promise<Match
 export async function computeAverages(task: Omit<AveragesTask, "kind">): Promise<AveragesAnswer> {
   try {
     return await pool().run({ ...task, kind: "averages" } satisfies AveragesTask);
+  } catch (error) {
+    throw asLost(error);
+  }
+}
+
+/**
+ * The draws of an edition in a thread.
+ *
+ * @throws WorkerLost when the thread ended
+ */
+export async function computeDraws(input: DrawTask["input"]): Promise<DrawAnswer["drawn"]> {
+  try {
+    const answer: DrawAnswer = await pool().run({ kind: "draw", input } satisfies DrawTask);
+    return answer.drawn;
   } catch (error) {
     throw asLost(error);
   }
