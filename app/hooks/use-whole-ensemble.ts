@@ -13,8 +13,11 @@ import type {
 
 /** Coordinates of as many bytes are fetched unasked; more than that only when the reader wants it. */
 const UNASKED_BYTES = 24 * 2 ** 20;
-/** A thread that has worked on an older question as long is ended for a newer one. */
-const PATIENCE_MS = 400;
+/**
+ * A thread that has worked on an older question as long is ended for a newer one. Starting another one costs a copy of
+ * all frames and the time in which its code gets warm: not for what is about to be answered.
+ */
+const PATIENCE_MS = 1500;
 
 export const PLATEAU_TOLERANCES = [0.02, 0.05, 0.1, 0.15, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.85, 1];
 export const PLATEAU_FACTORS = [0.5, 1, 2];

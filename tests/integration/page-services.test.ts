@@ -282,7 +282,8 @@ describe("the demo", () => {
     expect(await storedRows()).toEqual(before);
     const example = await loadExample({ actor: NOBODY });
     const waited = await call(`/files/sifts/${example?.sift?.id}?wait=60`, {});
-    expect(await waited.json()).toMatchObject({ status: "done", result: { kept: { length: 7 } } });
+    expect(await waited.json()).toMatchObject({ status: "done" });
+    expect((await loadExample({ actor: NOBODY }))?.sift?.result?.kept).toHaveLength(7);
   });
 
   it("on a public server is the example alone, in a team that nobody is in", async () => {

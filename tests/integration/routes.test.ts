@@ -17,7 +17,7 @@ function patternOf(row: TableRow): string {
 
 const PATTERNS = [...new Set(rows.map(patternOf))].filter((pattern) => /:(team|id)\b/.test(pattern)).sort();
 /** Calls and files that answer no GET. */
-const ACTS_ONLY = /^\/(api|files)\/.*\/(answers|reread|release|hold|sifts|files|columns|pair-matrix)$/;
+const ACTS_ONLY = /^\/(api|files)\/.*\/(answers|reread|release|hold|sifts|files|columns)$/;
 const isCall = (pattern: string) => /^\/(api|files)\//.test(pattern);
 
 const ids = { team: "", ensemble: "", sift: "" };

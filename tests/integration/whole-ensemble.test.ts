@@ -77,6 +77,8 @@ describe("the distances of all pairs", () => {
     const done = await (await asAnalyst(`/files/matrices/${id}?wait=30`)).json();
     expect(done).toMatchObject({ status: "done", progress: 1, pairs: of });
     expect((await (await ask("compared")).json()).id).toBe(id);
+    // Those of the distinct set are other ones, which nobody asked for yet.
+    expect(await (await asAnalyst(`/files/sifts/${siftId}/pair-matrix`)).json()).toEqual({ matrix: null });
 
     const { elements, bonds, positions } = await acceptedFrames();
     const plan = makePlan(makeGraph(elements, bonds), "heavy+polarH");
@@ -95,6 +97,9 @@ describe("the distances of all pairs", () => {
     const { id } = await (await ask("kept")).json();
     await asAnalyst(`/files/matrices/${id}?wait=30`);
     const csv = await (await asAnalyst(`/files/matrices/${id}/distances.csv`)).text();
+    const reader = await makeMember(lab.team.id, "reader");
+    const found = await asAnalyst(`/files/sifts/${siftId}/pair-matrix`, { cookie: reader.cookie });
+    expect(await found.json()).toMatchObject({ matrix: { id, status: "done" } });
     const pairs = kept.flatMap((a, i) => kept.slice(i + 1).map((b) => `${a},${b}`));
     expect(
       csv

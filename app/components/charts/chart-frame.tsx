@@ -30,6 +30,7 @@ export function ChartFrame({
   data,
   fileName,
   note,
+  tableBeside = false,
   className = "",
   children,
 }: {
@@ -38,6 +39,8 @@ export function ChartFrame({
   /** Without ending; letters, digits and hyphens. */
   fileName: string;
   note?: ReactNode;
+  /** The page has these numbers in a table of its own, so that readers without script need no second one. */
+  tableBeside?: boolean;
   className?: string;
   children: ReactNode;
 }) {
@@ -99,9 +102,11 @@ export function ChartFrame({
       <div id={`${id}-table`} hidden={!open} className="print:hidden mt-3 max-h-80 overflow-auto">
         {open ? <FigureTable data={data} title={title} most={ROWS_SHOWN} /> : null}
       </div>
-      <noscript>
-        <FigureTable data={data} title={title} most={ROWS_WITHOUT_SCRIPT} />
-      </noscript>
+      {tableBeside ? null : (
+        <noscript>
+          <FigureTable data={data} title={title} most={ROWS_WITHOUT_SCRIPT} />
+        </noscript>
+      )}
     </figure>
   );
 }

@@ -22,6 +22,7 @@ import { ATOM_SET_WORDS } from "~/lib/workbench/recipe-words";
 import type { OutsideView } from "~/services/outside/list-outside.server";
 import { NearestTable } from "./nearest-table";
 import { NearnessAgainstEnergy } from "./nearness-against-energy";
+import { OutsideTorsions } from "./outside-view";
 import { StrainChart } from "./strain-chart";
 import type { Comparison } from "./use-comparison";
 
@@ -132,6 +133,10 @@ export function ComparisonReport(props: Props) {
           The lowest {plural(near.length, "conformer")} of {rows.length} were compared.
         </p>
       ) : null}
+      {/* Beside the view where there is room for it. */}
+      <div className="mt-9 lg:hidden">
+        <OutsideTorsions />
+      </div>
       <Method
         comparison={comparison}
         strainLevel={strain === null ? null : (structure.strain?.levelName ?? null)}

@@ -80,7 +80,7 @@ export function NearestTable({
               <Td>
                 <span className="flex items-center gap-3">
                   <span className="figures w-9 text-right">{formatPopulation(row.population)}</span>
-                  <span className="w-20 max-sm:hidden">
+                  <span className="w-20 max-xl:hidden">
                     {row.population === null ? null : (
                       <PopulationBar population={row.population} widest={widest} />
                     )}

@@ -29,6 +29,8 @@ export function NearnessAgainstEnergy({
     <ChartFrame
       title="Nearness against energy"
       fileName="nearness-against-energy"
+      className="noscript:hidden"
+      tableBeside
       data={{
         columns: [
           { name: "conformer" },

@@ -19,6 +19,12 @@ import { SiftSettings } from "./sift-settings";
 import { ToleranceBlock } from "./tolerance-block";
 import { useWorkbench } from "./workbench-context";
 
+/**
+ * Of larger ensembles a moving thumb asks only the browser, which counts; the server is asked for the set once it rests.
+ * Each set has to be computed, stored and sent, and nobody looks at those passed on the way.
+ */
+const MOST_ASKED_ON_THE_WAY = 2000;
+
 /** Reducing the accepted frames to the shapes that differ, by a recipe that can be moved. */
 export function DistinctSetSection() {
   const { ensemble, sift, result, state, change } = useWorkbench();
@@ -128,7 +134,9 @@ export function DistinctSetSection() {
             request={request}
             words={`${capital(recipeLine(sift.recipe, null))}.`}
             onDraft={setDraft}
-            onAsk={onAsk}
+            onAsk={(next, settled) => {
+              if (settled || ensemble.accepted <= MOST_ASKED_ON_THE_WAY) onAsk(next, settled);
+            }}
           />
           <SiftLine
             asked={asked}

@@ -1,6 +1,16 @@
 import { useVirtualizer } from "@tanstack/react-virtual";
 import { ChevronDown, ChevronRight } from "lucide-react";
-import { type MouseEvent, type ReactNode, useCallback, useId, useMemo, useRef, useState } from "react";
+import {
+  type MouseEvent,
+  type ReactNode,
+  useCallback,
+  useEffect,
+  useId,
+  useLayoutEffect,
+  useMemo,
+  useRef,
+  useState,
+} from "react";
 import { flushSync } from "react-dom";
 import { DegeneracyBadge } from "~/components/ui/badge";
 import { IconButton } from "~/components/ui/button";
@@ -20,6 +30,10 @@ const FIRST_ROWS = 12;
 /** On paper; a last row counts what is left. */
 const PRINTED_ROWS = 500;
 const FIRST_REPEATS = 7;
+/** px of a row, and of one that says which search found it; of what an opened row shows until it was measured. */
+const ROW_HEIGHT = 36;
+const TALL_ROW_HEIGHT = 53;
+const OPENED_HEIGHT = 320;
 const MID = "max-sm:hidden";
 const NO_REPEATS: DroppedFrame[] = [];
 
@@ -29,6 +43,7 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
   const id = useId();
   const [all, setAll] = useState(false);
   const [open, setOpen] = useState<ReadonlySet<number>>(new Set());
+  const [heights, setHeights] = useState<ReadonlyMap<number, number>>(new Map());
   const repeats = useMemo(() => (result ? repeatsOf(result) : new Map<number, DroppedFrame[]>()), [result]);
   const order = useMemo(() => rows.map((row) => row.frame), [rows]);
   const chosen = new Set(selected);
@@ -39,11 +54,23 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
   const virtual = useVirtualizer({
     count: shown,
     getScrollElement: () => box.current,
-    estimateSize: () => 36,
+    estimateSize: (index) => {
+      const row = rows[index];
+      if (!row) return ROW_HEIGHT;
+      const opened = open.has(row.frame) ? (heights.get(row.frame) ?? OPENED_HEIGHT) : 0;
+      return (row.foundIn ? TALL_ROW_HEIGHT : ROW_HEIGHT) + opened;
+    },
     overscan: 12,
-    initialRect: { width: 900, height: FIRST_ROWS * 36 },
+    initialRect: { width: 900, height: FIRST_ROWS * ROW_HEIGHT },
     getItemKey: (index) => rows[index]?.frame ?? index,
   });
+  // biome-ignore lint/correctness/useExhaustiveDependencies: what is opened, and how tall it is, moves all rows below
+  useEffect(() => virtual.measure(), [virtual, open, heights]);
+  const onHeight = useCallback(
+    (frame: number, height: number) =>
+      setHeights((known) => (known.get(frame) === height ? known : new Map(known).set(frame, height))),
+    [],
+  );
   const scrollTo = useCallback(
     (index: number) => {
       // At once: the list has to be long enough before it can be scrolled there.
@@ -62,8 +89,7 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
     if (row) select(row.frame, how, order);
   };
   const { active, setActive, body, onKeyDown } = useRowFocus({ count: rows.length, scrollTo, onChoose });
-  // Opened rows are taller than assumed; while some are open all shown rows stand in the page.
-  const virtualised = all && open.size === 0 && !printing;
+  const virtualised = all && !printing;
   const items = virtualised
     ? virtual.getVirtualItems().map((item) => item.index)
     : Array.from({ length: shown }, (_, index) => index);
@@ -136,6 +162,7 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
                   selected={chosen.has(row.frame)}
                   tabbed={index === active}
                   onToggle={() => toggle(row.frame)}
+                  onHeight={onHeight}
                   onFocus={() => setActive(index)}
                   onChoose={onChoose}
                 />
@@ -181,6 +208,7 @@ function KeptRow({
   selected,
   tabbed,
   onToggle,
+  onHeight,
   onFocus,
   onChoose,
 }: {
@@ -192,6 +220,8 @@ function KeptRow({
   selected: boolean;
   tabbed: boolean;
   onToggle: () => void;
+  /** Of what is shown below it while it is open, px. */
+  onHeight: (frame: number, height: number) => void;
   onFocus: () => void;
   onChoose: (index: number, how: "only" | "add" | "extend") => void;
 }) {
@@ -226,7 +256,7 @@ function KeptRow({
                 {open ? <ChevronDown aria-hidden="true" /> : <ChevronRight aria-hidden="true" />}
               </IconButton>
             ) : (
-              <span className="-ml-2 size-7 pointer-coarse:size-11" />
+              <span className="-ml-2 size-7 print:hidden pointer-coarse:size-11" />
             )}
             <b className="font-semibold">{row.name}</b>
           </span>
@@ -271,13 +301,42 @@ function KeptRow({
         </Td>
       </Tr>
       {open ? (
-        <tr className="border-b border-rule bg-sunk">
-          <td colSpan={6} className="px-3 py-4 sm:pr-4 sm:pl-9">
-            <Repeats row={row} repeats={repeats} />
-          </td>
-        </tr>
+        <Opened onHeight={(height) => onHeight(row.frame, height)}>
+          <Repeats row={row} repeats={repeats} />
+        </Opened>
       ) : null}
     </>
+  );
+}
+
+/** What an opened row shows; it tells how tall it is, so that the rows far below find their place. */
+function Opened({ onHeight, children }: { onHeight: (height: number) => void; children: ReactNode }) {
+  const row = useRef<HTMLTableRowElement>(null);
+  const tell = useRef(onHeight);
+  tell.current = onHeight;
+  useLayoutEffect(() => {
+    const element = row.current;
+    if (!element) return;
+    const watch = new ResizeObserver(() => tell.current(element.offsetHeight));
+    watch.observe(element);
+    return () => watch.disconnect();
+  }, []);
+  return (
+    <tr ref={row} className="border-b border-rule bg-sunk">
+      <td colSpan={6} className="px-3 py-4 sm:pr-4 sm:pl-9">
+        {children}
+      </td>
+    </tr>
+  );
+}
+
+/** It stays where it is once pressed, so that a reader who works by key goes on from there. */
+function LayOver({ frame, laid, onLay }: { frame: number; laid: boolean; onLay: () => void }) {
+  return (
+    <TextButton aria-pressed={laid} className={laid ? "text-ink-3! no-underline" : ""} onClick={onLay}>
+      {laid ? "Laid over" : "Lay over"}
+      <span className="sr-only"> frame {frame}</span>
+    </TextButton>
   );
 }
 
@@ -320,13 +379,13 @@ function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly Droppe
               </Td>
               <Td>{frame.mirror ? "mirror image" : "same hand"}</Td>
               <Td align="right">
-                {selected.length === 2 && selected[0] === row.frame && selected[1] === frame.frame ? (
-                  <span className="text-ink-3">Laid over</span>
-                ) : (
-                  <TextButton onClick={() => show([row.frame, frame.frame])}>
-                    Lay over<span className="sr-only"> frame {frame.frame}</span>
-                  </TextButton>
-                )}
+                <LayOver
+                  frame={frame.frame}
+                  laid={
+                    selected.length === 2 && selected[0] === row.frame && selected[1] === frame.frame
+                  }
+                  onLay={() => show([row.frame, frame.frame])}
+                />
               </Td>
             </tr>
           ))}

@@ -1,4 +1,4 @@
-import type { ReactNode } from "react";
+import { type ReactNode, useMemo } from "react";
 import { BlockHead } from "~/components/ui/finding";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
@@ -21,18 +21,18 @@ export function NearestPairs({
   progress: { done: number; of: number } | null;
 }) {
   const { rows, result, sift, roles } = useWorkbench();
+  const under = useMemo(() => (result === null ? [] : farthestRepeats(result, SHOWN)), [result]);
   if (result === null || sift === null || rows.length < 2) return null;
   const apart = ({ a, b }: NearPair) => {
     const [x, y] = [rows[a]?.relativeEnergy, rows[b]?.relativeEnergy];
     return x === null || x === undefined || y === null || y === undefined ? null : Math.abs(x - y);
   };
-  const under = farthestRepeats(result, SHOWN);
   const name = (frame: number) => {
     const role = roles.get(frame);
     return role?.kind === "kept" ? role.name : `frame ${frame}`;
   };
   return (
-    <div className="min-w-0">
+    <div className="min-w-0 break-inside-avoid">
       <BlockHead title="Pairs nearest to the cut" />
       <Table aria-label="Pairs nearest to the cut: kept apart above it, merged below it">
         <thead>

@@ -38,6 +38,18 @@ export function PairDistances() {
     { refreshInterval: 150, dedupingInterval: 0, revalidateOnFocus: false, errorRetryInterval: 2000 },
   );
   const latest = useRef(setAsked);
+  // Who comes later, or may not compute, finds what was asked for before.
+  const known = useSWR<MatrixState | null, Error>(
+    sift === null || result === null ? null : href("/files/sifts/:id/pair-matrix", { id: sift.id }),
+    async (address: string) => {
+      const response = await fetch(address);
+      return response.ok ? ((await response.json()) as { matrix: MatrixState | null }).matrix : null;
+    },
+    { revalidateOnFocus: false, revalidateIfStale: false },
+  ).data;
+  useEffect(() => {
+    if (known) latest.current((now) => now ?? known);
+  }, [known]);
   useEffect(() => {
     if (data && data.id === follow && hasEnded(data.status)) latest.current(data);
   }, [data, follow]);

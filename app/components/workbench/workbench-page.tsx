@@ -116,7 +116,11 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
           <p className="hidden max-w-read text-ink-3 noscript:block">
             The 3D view needs script. What it measures and what is drawn beside it stands in the tables.
           </p>
-          {section === "compare" ? <OutsideTorsions /> : null}
+          {section === "compare" ? (
+            <div className="max-lg:hidden">
+              <OutsideTorsions />
+            </div>
+          ) : null}
           {section === "intake" ? <FilePanel /> : null}
         </aside>
         <div className="min-w-0">{children}</div>

@@ -1,11 +1,12 @@
 import { createHash } from "node:crypto";
 import { and, eq } from "drizzle-orm";
-import { inTransaction, type Queryable } from "../../db/client.server.ts";
+import { db, inTransaction, type Queryable } from "../../db/client.server.ts";
 import { isDuplicate } from "../../db/driver-errors.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { ensembles, pairMatrices } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { formatCount } from "../../lib/format.ts";
+import type { SiftRecipe } from "../../lib/recipe/recipe.ts";
 import { ATOM_SET_WORDS } from "../../lib/workbench/recipe-words.ts";
 import { type Actor, accessSift, type Grant } from "../auth/access.server.ts";
 import { matrixJob } from "../jobs/definitions/matrix.ts";
@@ -47,8 +48,7 @@ export async function askForMatrix(options: {
       `These are ${formatCount(numbers.length)} frames; the distances of all pairs are computed for up to ${formatCount(MOST_FRAMES)}. Take the distinct set, or narrow its energy window.`,
     );
   }
-  const { atoms, symmetry, mirror } = sift.recipe;
-  const recipe = { version: 1 as const, atoms, symmetry, mirror: mirror === "merge" };
+  const recipe = recipeOf(sift);
   const ask = () =>
     inTransaction((tx) => insertOrFind(tx, grant, recipe, numbers), { isolation: "read committed" });
   const id = await ask().catch((error: unknown) => {
@@ -65,7 +65,49 @@ function unfit(message: string): DomainError {
   });
 }
 
+/** The distances of a sift's distinct set where somebody asked for them on these frames; null where nobody did. */
+export async function matrixOfSift(options: { actor: Actor; siftId: string }): Promise<MatrixState | null> {
+  const grant = await accessSift(options.actor, "read", options.siftId);
+  const sift = await findSift(grant.siftId);
+  const result = await readResult(grant.siftId);
+  if (result === null) return null;
+  const inputSha = await checksumOf(
+    db,
+    grant.ensembleId,
+    recipeOf(sift),
+    result.kept.map(({ frame }) => frame),
+  );
+  const [known] = await db
+    .select({ id: pairMatrices.id })
+    .from(pairMatrices)
+    .where(and(eq(pairMatrices.ensembleId, grant.ensembleId), eq(pairMatrices.inputSha, inputSha)));
+  return known === undefined ? null : findMatrix(known.id);
+}
+
 type Recipe = { version: 1; atoms: "heavy" | "heavy+polarH" | "all"; symmetry: boolean; mirror: boolean };
+
+function recipeOf({ recipe }: { recipe: SiftRecipe }): Recipe {
+  const { atoms, symmetry, mirror } = recipe;
+  return { version: 1, atoms, symmetry, mirror: mirror === "merge" };
+}
+
+/** Of the question: elements, bonds and coordinates are in the checksum of the accepted frames. */
+async function checksumOf(
+  on: Queryable,
+  ensembleId: string,
+  recipe: Recipe,
+  numbers: readonly number[],
+): Promise<Buffer> {
+  const molecule = await on
+    .select({ sha: ensembles.acceptedSha })
+    .from(ensembles)
+    .where(eq(ensembles.id, ensembleId));
+  return createHash("sha256")
+    .update("pair matrix 1\n")
+    .update(molecule[0]?.sha ?? "")
+    .update(JSON.stringify([recipe, numbers]))
+    .digest();
+}
 
 async function insertOrFind(
   tx: Queryable,
@@ -73,16 +115,7 @@ async function insertOrFind(
   recipe: Recipe,
   numbers: readonly number[],
 ): Promise<string> {
-  const molecule = await tx
-    .select({ sha: ensembles.acceptedSha })
-    .from(ensembles)
-    .where(eq(ensembles.id, at.ensembleId));
-  // Elements, bonds and coordinates are in the checksum of the accepted frames.
-  const inputSha = createHash("sha256")
-    .update("pair matrix 1\n")
-    .update(molecule[0]?.sha ?? "")
-    .update(JSON.stringify([recipe, numbers]))
-    .digest();
+  const inputSha = await checksumOf(tx, at.ensembleId, recipe, numbers);
   const same = await tx
     .select({ id: pairMatrices.id })
     .from(pairMatrices)

@@ -109,7 +109,9 @@ function strainOf(
 ): Pick<OutsideView, "strain" | "withoutStrain"> {
   const without = (withoutStrain: string) => ({ strain: null, withoutStrain });
   if (energy === null) {
-    return without("It carries no energy at a level of this ensemble, so its strain is not known.");
+    return without(
+      "It carries no energy at a level of this ensemble, so its strain is not known. Where it has one, add it again and type it, or write it where the ensemble’s own stand.",
+    );
   }
   if (atoms !== "all") {
     return without(

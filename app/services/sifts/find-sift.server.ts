@@ -116,9 +116,9 @@ export async function readResult(siftId: string): Promise<SiftResult | null> {
   return text == null ? null : (JSON.parse(text) as SiftResult);
 }
 
-/** A sift with its result as pages and the API show it. */
-export async function toSiftView(sift: FoundSift): Promise<SiftView> {
-  const result = sift.status === "done" ? await readResult(sift.id) : null;
+/** A sift with its result, unless only its state is asked for, as pages and the API show it. */
+export async function toSiftView(sift: FoundSift, { stateOnly = false } = {}): Promise<SiftView> {
+  const result = sift.status === "done" && !stateOnly ? await readResult(sift.id) : null;
   return {
     id: sift.id,
     status: sift.status,

@@ -7,11 +7,13 @@ import { findSift, toSiftView } from "./find-sift.server.ts";
  * One sift, after waiting for its end where asked to.
  *
  * @param options.waitSeconds answers when it has ended, at the latest after so many seconds
+ * @param options.stateOnly leaves the result out, which may be megabytes
  */
 export async function getSift(options: {
   actor: Actor;
   siftId: string;
   waitSeconds?: number;
+  stateOnly?: boolean;
   signal?: AbortSignal;
 }): Promise<SiftView & { ensemble: string }> {
   const grant = await accessSift(options.actor, "read", options.siftId);
@@ -23,5 +25,6 @@ export async function getSift(options: {
     await accessSift(options.actor, "read", options.siftId);
     sift = await findSift(grant.siftId);
   }
-  return { ...(await toSiftView(sift)), ensemble: grant.ensembleId };
+  const view = await toSiftView(sift, { stateOnly: options.stateOnly ?? false });
+  return { ...view, ensemble: grant.ensembleId };
 }

@@ -107,7 +107,7 @@ const RULES: Record<string, Rule> = {
   },
   "/files/ensembles/:id/sifts": { GET: everybody(405), POST: "422 422 403 404 404", DELETE: everybody(405) },
   "/files/sifts/:id/pair-matrix": {
-    GET: everybody(405),
+    GET: READ_PAGE,
     POST: "202 202 403 404 404",
     DELETE: everybody(405),
   },
