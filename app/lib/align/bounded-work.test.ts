@@ -109,6 +109,17 @@ describe("long alkanes", () => {
     }
   });
 
+  it("a long search asks every 8,192 nodes whether to go on", () => {
+    const plan = makePlan(alkaneGraph(60), "all");
+    const comparer = new SymmetricRmsd(plan);
+    let asked = 0;
+    comparer.interrupt = () => {
+      asked += 1;
+    };
+    comparer.minimum(shapeOf(plan, coil(60, 1)), 0, shapeOf(plan, coil(60, 2)), 0);
+    expect(comparer.nodes / (asked + 1)).toBeLessThan(1.05 * 8192);
+  });
+
   it("a long search may be ended from outside", () => {
     const plan = makePlan(alkaneGraph(60), "all");
     const comparer = new SymmetricRmsd(plan);

@@ -299,6 +299,25 @@ describe("hooks", () => {
     expect(() => runSift(input, { cancelled: () => ++looks > 2 })).toThrow(SiftCancelled);
   });
 
+  it("compare nothing more once the word has come", () => {
+    const frames = Array.from({ length: 300 }, (_, k) => alkane(6, [60 + k, 300 - k, 2 * k]));
+    const long = inputOf(6, frames, null, { rmsdTolerance: 0.01 });
+    let stop = false;
+    let asked = 0;
+    const told: number[] = [];
+    const progress = (fraction: number) => {
+      told.push(fraction);
+      stop = fraction >= 0.5;
+    };
+    const cancelled = () => {
+      asked += Number(stop);
+      return stop;
+    };
+    expect(() => runSift(long, { progress, cancelled })).toThrow(SiftCancelled);
+    expect(asked).toBe(1);
+    expect(told.at(-1)).toBe(0.5);
+  });
+
   it("change nothing in the result", () => {
     const hooked = runSift(input, { progress() {}, cancelled: () => false, now: () => 0 });
     expect(JSON.stringify(hooked)).toBe(JSON.stringify(runSift(input)));
