@@ -111,6 +111,22 @@ export interface IntakeView {
   questions: IntakeQuestion[];
   /** The number that was named as the energy, with the files or since; null where the only one was taken. */
   energyFrom: string | null;
+  /** How the energies of the files are read as things stand, whoever said so and when. */
+  inForce: EnergiesInForce[];
+  /** Ensembles that were made of held frames, as far as they still exist and the reader may see them. */
+  became: { ensembleId: string; name: string; frames: number[] }[];
+}
+
+/** Energies that the files hold themselves: which number they are, and what was stated or read of it. */
+export interface EnergiesInForce {
+  level: string;
+  /** "key:NAME", "number:N" or "field:NAME". */
+  from: string;
+  unit: string;
+  kind: EnergyKind;
+  /** False where nobody said what kind they are. */
+  kindStated: boolean;
+  temperature: number | null;
 }
 
 /** Row of the table of ensembles. */

@@ -4,7 +4,9 @@ import { beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { logbook } from "~/db/schema.server";
 import type { Actor } from "~/services/auth/access.server";
+import { deleteEnsemble } from "~/services/ensembles/delete-ensemble.server";
 import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
+import { loadIntake } from "~/services/ensembles/load-intake.server";
 import { loadSource } from "~/services/ensembles/load-source.server";
 import { splitOff } from "~/services/ensembles/split-off.server";
 import { record } from "../factories/mol";
@@ -78,6 +80,13 @@ describe("held frames of something else", () => {
     expect(await entries(made.ensembleId, "split-from")).toEqual([
       { data: { ...there, ensembleId: parent.id, name: "Butane" } },
     ]);
+    expect(made.name).toBe("Butane, H2O");
+    const { became } = await loadIntake({ actor, ensembleId: parent.id });
+    expect(became).toEqual([{ ensembleId: made.ensembleId, name: made.name, frames: [2, 5] }]);
+    // How its energies are read is known there without a question ever asked.
+    expect((await loadIntake({ actor, ensembleId: made.ensembleId })).inForce).toMatchObject([
+      { level: "A method", from: "key:energy", unit: "kcal/mol", kind: "electronic" },
+    ]);
     // In the parent they stay held.
     expect(await describeEnsemble(lab.team.id, parent.id)).toMatchObject({
       intake: { accepted: 3, held: 3 },
@@ -91,6 +100,8 @@ describe("held frames of something else", () => {
     const second = await splitOff({ actor, ensembleId: parent.id, frame: 5 });
     expect(second).toEqual({ ...first, created: false });
     expect(await entries(parent.id, "split-off")).toHaveLength(1);
+    await deleteEnsemble({ actor, ensembleId: first.ensembleId });
+    expect((await loadIntake({ actor, ensembleId: parent.id })).became).toEqual([]);
   });
 
   it("of one species are taken apart from those of another", async () => {
@@ -113,8 +124,8 @@ describe("held frames of something else", () => {
     const child = await describeEnsemble(lab.team.id, made.ensembleId);
     expect(child).toMatchObject({ formula: "H2O", intake: { frames: 4, accepted: 4, held: 0 } });
     expect(child.files.map(({ name, frames }) => [name, frames])).toEqual([
-      ["first, frame 2 and 1 more.xyz", 2],
-      ["second, frame 9 and 1 more.xyz", 2],
+      ["first, H2O.xyz", 2],
+      ["second, H2O.xyz", 2],
     ]);
     expect(await bytesOf(made.ensembleId, 0)).toBe(
       frame("zip_2 energy=-76.1", WATER) + frame("zip_5 energy=-76.3", WATER),

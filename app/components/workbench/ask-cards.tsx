@@ -1,4 +1,4 @@
-import { useState } from "react";
+import { type FormEvent, useRef, useState } from "react";
 import { href, useFetcher } from "react-router";
 import { Button, SubmitButton } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
@@ -6,6 +6,7 @@ import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
 import { ABSENT, fixed, formatEnergy, withUnit } from "~/lib/format";
 import { readAskId } from "~/lib/intake/reading-questions";
 import type { IntakeQuestion, QuestionOption as Option } from "~/lib/intake/report";
+import { moreMayFollow } from "~/lib/workbench/findings";
 import type { ActAnswer } from "./act-answer";
 
 /** What intake leaves open, one card a question; nothing is computed before they are answered. */
@@ -22,6 +23,7 @@ export function AskCards({
   const open = questions
     .map((question, k) => ({ question, place: k + 1 }))
     .filter(({ question }) => question.answered === undefined);
+  const all = moreMayFollow(questions) ? `at least ${questions.length + 1}` : String(questions.length);
   return (
     <div className="mt-7 grid gap-5">
       {open.map(({ question, place }) => (
@@ -29,7 +31,7 @@ export function AskCards({
           key={question.id}
           ensembleId={ensembleId}
           question={question}
-          count={`Question ${place} of ${questions.length}`}
+          count={`Question ${place} of ${all}`}
           mayAnswer={mayAnswer}
         />
       ))}
@@ -52,10 +54,24 @@ function AskCard({
   const proposed = question.options.find((option) => option.proposed) ?? null;
   const [choice, setChoice] = useState(proposed?.id ?? "");
   const chosen = question.options.find((option) => option.id === choice);
+  const [missing, setMissing] = useState(false);
+  const form = useRef<HTMLFormElement>(null);
   const refused = fetcher.data && !fetcher.data.ok ? fetcher.data.message : undefined;
   const named = question.code === "level";
+  const check = (event: FormEvent<HTMLFormElement>) => {
+    const given = String(new FormData(event.currentTarget).get("option") ?? "").trim();
+    setMissing(given === "");
+    if (given !== "") return;
+    event.preventDefault();
+    form.current?.querySelector<HTMLInputElement>('input[name="option"]')?.focus();
+  };
   return (
-    <fetcher.Form method="post" action={href("/ensembles/:id/intake", { id: ensembleId })}>
+    <fetcher.Form
+      ref={form}
+      method="post"
+      action={href("/ensembles/:id/intake", { id: ensembleId })}
+      onSubmit={check}
+    >
       <input type="hidden" name="intent" value="answer" />
       <input type="hidden" name="question" value={question.id} />
       <QuestionCard
@@ -65,12 +81,15 @@ function AskCard({
         footer={
           mayAnswer ? (
             <>
-              <SubmitButton pending={fetcher.state !== "idle"} disabled={!named && !chosen}>
-                {buttonWords(question, chosen)}
-              </SubmitButton>
-              <span className={refused ? "text-danger" : ""} role={refused ? "alert" : undefined}>
-                {refused ?? footWords(question)}
-              </span>
+              {/* Never disabled: without script it sends what was chosen, and the server says what is missing. */}
+              <SubmitButton pending={fetcher.state !== "idle"}>{buttonWords(question, chosen)}</SubmitButton>
+              {refused || (missing && !named) ? (
+                <span className="text-danger" role="alert">
+                  {refused ?? "Choose one of them first."}
+                </span>
+              ) : (
+                <span>{footWords(question)}</span>
+              )}
             </>
           ) : (
             <span>An analyst or an owner of the team answers this.</span>
@@ -78,7 +97,12 @@ function AskCard({
         }
       >
         {named ? (
-          <LevelName question={question} proposed={proposed} />
+          <LevelName
+            question={question}
+            proposed={proposed}
+            missing={missing}
+            onTyped={() => setMissing(false)}
+          />
         ) : (
           <>
             <OptionHead question={question} />
@@ -88,7 +112,10 @@ function AskCard({
                 name="option"
                 value={option.id}
                 checked={choice === option.id}
-                onChange={setChoice}
+                onChange={(id) => {
+                  setChoice(id);
+                  setMissing(false);
+                }}
                 title={option.text}
                 reason={option.detail}
               >
@@ -104,7 +131,7 @@ function AskCard({
 
 function buttonWords(question: IntakeQuestion, chosen: Option | undefined): string {
   if (question.code === "level") return "Name the level";
-  if (!chosen) return "Choose first";
+  if (!chosen) return "Confirm the choice";
   if (readAskId(question.id)) return chosen.id === "hold" ? "Keep them held" : chosen.text;
   if (chosen.id === "none") return "Take the structures without energies";
   return question.code === "energy-unit" ? `Confirm ${chosen.text}` : `Use ${chosen.text}`;
@@ -118,19 +145,34 @@ function footWords(question: IntakeQuestion): string {
 }
 
 /** Any name will do; names that the file or the team already use are one click away. */
-function LevelName({ question, proposed }: { question: IntakeQuestion; proposed: Option | null }) {
+function LevelName({
+  question,
+  proposed,
+  missing,
+  onTyped,
+}: {
+  question: IntakeQuestion;
+  proposed: Option | null;
+  /** It was sent without a name. */
+  missing: boolean;
+  onTyped: () => void;
+}) {
   const [name, setName] = useState(proposed?.text ?? "");
   return (
     <div className="max-w-read px-4 py-4 sm:px-6">
       <TextField
         label="Name of the level of theory"
         name="option"
-        required
+        aria-required="true"
+        error={missing ? "Give the level a name, for example B3LYP/6-31G(d)." : undefined}
         maxLength={120}
         autoComplete="off"
         spellCheck={false}
         value={name}
-        onChange={(event) => setName(event.currentTarget.value)}
+        onChange={(event) => {
+          setName(event.currentTarget.value);
+          onTyped();
+        }}
         placeholder="for example B3LYP/6-31G(d)"
         help={proposed?.detail ?? "As the trade writes it; tables, figures and exports carry it."}
       />
@@ -138,7 +180,14 @@ function LevelName({ question, proposed }: { question: IntakeQuestion; proposed:
         <p className="mt-3 flex flex-wrap items-center gap-2 text-xs text-ink-3">
           Already in use:
           {question.options.map((option) => (
-            <Button key={option.id} size="sm" onClick={() => setName(option.text)}>
+            <Button
+              key={option.id}
+              size="sm"
+              onClick={() => {
+                setName(option.text);
+                onTyped();
+              }}
+            >
               {option.text}
             </Button>
           ))}

@@ -1,12 +1,14 @@
-import { type ReactNode, useState } from "react";
+import { type FocusEvent, type ReactNode, type RefObject, useRef, useState } from "react";
+import { href } from "react-router";
 import { Badge } from "~/components/ui/badge";
 import { WithFormulas } from "~/components/ui/formula";
-import { TextButton } from "~/components/ui/text-link";
-import { capital, formatCount, plural } from "~/lib/format";
+import { TextButton, TextLink } from "~/components/ui/text-link";
+import { useFocusRefuge } from "~/hooks/use-focus-refuge";
+import { formatCount, plural } from "~/lib/format";
 import { whyNotReleased } from "~/lib/intake/release";
 import type { IntakeMessage } from "~/lib/intake/report";
 import { canBeSplitOff } from "~/lib/intake/split-name";
-import type { FileView, FrameView } from "~/lib/views";
+import type { FileView, FrameView, IntakeView } from "~/lib/views";
 import { type FrameGroup, framesWords, groupFrames, reasonWords } from "~/lib/workbench/intake-lists";
 import { HoldFrame, ReleaseFrame } from "./decide-frame";
 import { SplitOff } from "./split-off";
@@ -15,22 +17,31 @@ import { useWorkbench } from "./workbench-context";
 const FIRST_GROUPS = 10;
 
 /** What is held, why, where, and what can be done about it. */
-export function HeldList({ frames, waiting }: { frames: readonly FrameView[]; waiting: number }) {
+export function HeldList({ intake }: { intake: Pick<IntakeView, "held" | "waiting" | "became"> }) {
+  const { held: frames, waiting, became } = intake;
   const { ensemble } = useWorkbench();
+  const refuge = useRef<HTMLHeadingElement>(null);
+  const onFocus = useFocusRefuge(() => refuge.current);
+  const held = ensemble.held - waiting;
   const waits = (frame: FrameView) => frame.holdReason === "waits-for-answer" && ensemble.openQuestions > 0;
   // What a person can look into comes before the crowd that only waits.
   const ordered = [...frames.filter((frame) => !waits(frame)), ...frames.filter(waits)];
   return (
     <FrameList
-      title="Held"
-      badge={<Badge tone="held">{formatCount(ensemble.held - waiting)}</Badge>}
-      lead={
-        ensemble.held - waiting === 0
-          ? waiting > 0
-            ? "No frame is held for another reason than an open question."
-            : "No frame is held."
-          : "Kept, and left out of every computation until somebody releases them."
+      title={held === 0 && waiting > 0 ? "Waiting for an answer" : "Held"}
+      heading={refuge}
+      onFocus={onFocus}
+      badge={
+        <>
+          {held > 0 || waiting === 0 ? (
+            <Badge tone={held > 0 ? "held" : "plain"}>{formatCount(held)}</Badge>
+          ) : null}
+          {waiting > 0 ? (
+            <Badge tone="ask">{held > 0 ? `${formatCount(waiting)} wait` : formatCount(waiting)}</Badge>
+          ) : null}
+        </>
       }
+      lead={heldLead(frames, held, waiting)}
       edge="border-held-edge"
       frames={ordered}
       total={ensemble.held}
@@ -40,9 +51,22 @@ export function HeldList({ frames, waiting }: { frames: readonly FrameView[]; wa
         ) : null
       }
     >
-      {(group) => <HeldEntry key={group.first.number} group={group} />}
+      {(group) => <HeldEntry key={group.first.number} group={group} became={became} />}
     </FrameList>
   );
+}
+
+/** What being held means for those that are listed. */
+function heldLead(frames: readonly FrameView[], held: number, waiting: number): string {
+  if (held === 0 && waiting > 0) return "Kept; the answers above release them. Nothing else is held.";
+  if (held === 0) return "No frame is held.";
+  const kept = "Kept, and left out of every computation";
+  const own = frames.filter(({ holdReason }) => holdReason !== "waits-for-answer");
+  const free = own.filter(({ releasable }) => releasable).length;
+  if (free === 0) return `${kept}. None of them can be released; each says why.`;
+  return free === own.length
+    ? `${kept} until somebody releases ${held === 1 ? "it" : "them"}.`
+    : `${kept}. Some can be released, the others say why not.`;
 }
 
 /** Frames that were accepted with a remark; it travels with them. */
@@ -51,7 +75,9 @@ export function RemarkedList({ frames }: { frames: readonly FrameView[] }) {
   return (
     <FrameList
       title="With a remark"
-      badge={<Badge tone="remark">{formatCount(ensemble.remarked)}</Badge>}
+      badge={
+        <Badge tone={ensemble.remarked > 0 ? "remark" : "plain"}>{formatCount(ensemble.remarked)}</Badge>
+      }
       lead={
         ensemble.remarked === 0
           ? "No frame carries a remark."
@@ -83,9 +109,14 @@ function FrameList({
   frames,
   total,
   tool,
+  heading,
+  onFocus,
   children,
 }: {
   title: string;
+  /** Takes the focus when an entry goes that had it. */
+  heading?: RefObject<HTMLHeadingElement | null>;
+  onFocus?: (event: FocusEvent) => void;
   badge: ReactNode;
   lead: string;
   edge: string;
@@ -98,9 +129,12 @@ function FrameList({
   const groups = groupFrames(frames);
   const shown = all ? groups : groups.slice(0, FIRST_GROUPS);
   return (
-    <section className="min-w-0">
+    // biome-ignore lint/a11y/noStaticElementInteractions: it watches where the focus of the controls inside is
+    <section className="min-w-0" onFocus={onFocus}>
       <div className="flex min-h-7 flex-wrap items-center gap-3">
-        <h3 className="text-sm font-semibold">{title}</h3>
+        <h3 ref={heading} tabIndex={heading ? -1 : undefined} className="text-sm font-semibold outline-none">
+          {title}
+        </h3>
         {badge}
         {tool ? <span className="ml-auto">{tool}</span> : null}
       </div>
@@ -147,12 +181,13 @@ function Entry({ group, children }: { group: FrameGroup; children: ReactNode }) 
   );
 }
 
-function HeldEntry({ group }: { group: FrameGroup }) {
+function HeldEntry({ group, became }: { group: FrameGroup; became: IntakeView["became"] }) {
   const { ensemble } = useWorkbench();
   const { first, frames } = group;
   const waits = first.holdReason === "waits-for-answer";
-  const why = whyNotReleased(first.holdReason);
+  const why = whyNotReleased(first.holdReason, frames.length);
   const single = frames.length === 1;
+  const child = became.find((one) => one.frames.includes(first.number));
   return (
     <Entry group={group}>
       {first.note ? (
@@ -167,15 +202,19 @@ function HeldEntry({ group }: { group: FrameGroup }) {
       ) : null}
       {why !== null ? (
         <p className="text-xs text-ink-3">
-          {single ? "It" : "They"} cannot be released
-          {single ? `: ${why}` : `: ${plural(frames.length, "frame")}. ${capital(why)}`}
+          {single ? "It" : `The ${plural(frames.length, "frame")}`} cannot be released: {why}
         </p>
       ) : null}
       <Acts group={group}>
         {single && first.releasable && ensemble.mayCompute && !(waits && ensemble.openQuestions > 0) ? (
           <ReleaseFrame ensembleId={ensemble.id} frame={first.number} note={first.note} />
         ) : null}
-        {ensemble.mayCompute && canBeSplitOff(first.holdReason) ? (
+        {child ? (
+          <span className="text-ink-2">
+            Became{" "}
+            <TextLink to={href("/ensembles/:id/intake", { id: child.ensembleId })}>{child.name}</TextLink>
+          </span>
+        ) : ensemble.mayCompute && canBeSplitOff(first.holdReason) ? (
           <SplitOff ensembleId={ensemble.id} frame={first.number} count={frames.length} />
         ) : null}
       </Acts>

@@ -39,7 +39,7 @@ const WORK: readonly Word[] = [
   {
     word: "Held",
     means:
-      "A frame that is kept but left out of every computation, with the reason, until somebody releases it. A frame of another species cannot be released; it can become an ensemble of its own.",
+      "A frame that is kept but left out of every computation, with the reason. Some can be released; a frame of another species cannot, but it can become an ensemble of its own.",
     method: "bonds",
   },
   {

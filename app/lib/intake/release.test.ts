@@ -18,4 +18,5 @@ it.each([
   null,
 ])("%s stays held, with a way out", (reason) => {
   expect(whyNotReleased(reason)).toMatch(/^(it|its|the) .+\. .+\.$/);
+  expect(whyNotReleased(reason, 2)).toMatch(/^(they|their|the) .+\. .+\.$/);
 });

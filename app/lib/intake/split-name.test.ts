@@ -10,6 +10,10 @@ describe("splitName", () => {
       "Acid, C5 has the other hand (R, the others S)",
     );
     expect(splitName("Acid", null)).toBe("Acid, held frames");
+    expect(splitName("mixed", "Another composition: C4H10, where the ensemble is C2H4F2.")).toBe(
+      "mixed, C4H10",
+    );
+    expect(splitName("mixed", "Another charge: 1, where the ensemble has 0.")).toBe("mixed, charge: 1");
   });
 
   it("cuts the parent's name before the change, and never passes 200 characters", () => {

@@ -8,7 +8,7 @@ import { framesWords } from "../workbench/intake-lists.ts";
  */
 
 /** The other ensemble, and the frames of the one they were held in; of many the first are named. */
-const splitFrames = z.object({
+export const splitFrames = z.object({
   ensembleId: z.string(),
   name: z.string(),
   frames: z.array(z.number()).max(500),

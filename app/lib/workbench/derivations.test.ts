@@ -16,6 +16,7 @@ import {
   populationsFinding,
   shareFigure,
   shareWords,
+  spreadCaution,
   windowFinding,
 } from "./findings.ts";
 import { frameStrip } from "./frame-strip.ts";
@@ -291,18 +292,55 @@ describe("findings in words", () => {
     expect(nearMirror(result, { ...recipe, mirror: "keep" })).toEqual([]);
   });
 
+  const level = {
+    ...{ id: "eeeeeeeeeeeeeeee", name: "A", unit: "hartree", count: 397, missing: 0, ordinal: 1 },
+    ...{ energyKind: "electronic" as const, temperature: null },
+  };
+
   test("intake", () => {
-    expect(intakeFinding(ensemble, 0).text).toBe(
+    const weighed = { ...ensemble, levels: [level] };
+    const quiet = { waiting: 0, questions: [], messages: [] };
+    expect(intakeFinding(weighed, quiet).text).toBe(
       "400 frames read: 397 are accepted, 5 of them with a remark, and 3 are held.",
     );
-    expect(
-      intakeFinding({ ...ensemble, accepted: 0, remarked: 0, held: 400, openQuestions: 2 }, 397).text,
-    ).toBe(
+    const open = { ...weighed, accepted: 0, remarked: 0, held: 400, openQuestions: 2 };
+    expect(intakeFinding(open, { ...quiet, waiting: 397 }).text).toBe(
       "400 frames read: 397 can be accepted and 3 are held for other reasons. Two questions come first; nothing is computed before they are answered.",
     );
-    expect(intakeFinding({ ...ensemble, accepted: 400, remarked: 0, held: 0 }, 0).text).toBe(
+    const whole = { ...weighed, accepted: 400, remarked: 0, held: 0 };
+    expect(intakeFinding(whole, quiet).text).toBe("400 frames read: all are accepted.");
+    const unit = { id: "u", code: "energy-from", text: "Which number is the energy?", options: [] };
+    expect(intakeFinding(open, { ...quiet, waiting: 400, questions: [unit] }).text).toBe(
+      "400 frames read: 400 can be accepted. At least three questions come first; nothing is computed before they are answered.",
+    );
+  });
+
+  test("intake says first what is odd of the energies, or that there are none", () => {
+    const quiet = { waiting: 0, questions: [], messages: [] };
+    const whole = { ...ensemble, levels: [level], accepted: 400, remarked: 0, held: 0 };
+    const none = intakeFinding({ ...whole, levels: [] }, quiet);
+    expect(none.text).toBe(
+      "400 frames read: all are accepted. None has an energy, so there are no populations.",
+    );
+    expect(none.second).toMatch(/^Give the energies as a table/);
+    const wide = {
+      ...({ code: "E12", severity: "remark", file: "a.xyz" } as const),
+      message: "The energies span 395 kcal/mol, more than conformers of one molecule do.",
+      hint: "Is the unit right, and are all frames the same molecule?",
+    };
+    expect(intakeFinding(whole, { ...quiet, messages: [{ ...wide, frame: 3 }] }).text).toBe(
       "400 frames read: all are accepted.",
     );
+    expect(intakeFinding(whole, { ...quiet, messages: [wide] }).text).toBe(
+      `400 frames read: all are accepted. ${wide.message} ${wide.hint}`,
+    );
+    const apart = (kcal: number) =>
+      rows.map((row, k) => ({ ...row, relativeEnergy: (k * kcal) / (rows.length - 1) }));
+    expect(spreadCaution(apart(395), level)).toMatch(
+      /^The energies of “A” span 395 kcal\/mol, .* in hartree\.$/,
+    );
+    expect(spreadCaution(apart(4), level)).toBeNull();
+    expect(spreadCaution(apart(395), null)).toBeNull();
   });
 
   test("what became of a frame", () => {
@@ -551,7 +589,7 @@ describe("stations of the course line", () => {
       "levels: no energies, todo",
       "averages: no property, todo",
       "trust: no sign of gaps, done",
-      "hand-over: CSV, XYZ, JSON, done",
+      "hand-over: CSV, XYZ, SDF, JSON, done",
       "logbook: who did what, done",
     ]);
   });

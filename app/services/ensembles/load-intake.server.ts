@@ -1,11 +1,12 @@
-import { and, asc, eq, sql } from "drizzle-orm";
+import { and, asc, eq, inArray, isNull, sql } from "drizzle-orm";
 import { z } from "zod";
 import { db, type Queryable } from "../../db/client.server.ts";
-import { ensembles, frames, intakeMessages, questions } from "../../db/schema.server.ts";
+import { columns, ensembles, frames, intakeMessages, logbook, questions } from "../../db/schema.server.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { HoldReason, IntakeMessage, IntakeQuestion, QuestionOption } from "../../lib/intake/report.ts";
-import type { FrameView, IntakeView } from "../../lib/views.ts";
-import { type Actor, accessEnsemble } from "../auth/access.server.ts";
+import { splitFrames } from "../../lib/logbook/entries.ts";
+import type { EnergiesInForce, FrameView, IntakeView } from "../../lib/views.ts";
+import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 
 /** Frames of one state that the page lists; the strip shows all. */
 const LISTED = 500;
@@ -91,19 +92,82 @@ async function intakeStrip(ensembleId: string): Promise<string> {
   return rows[0]?.text ?? "";
 }
 
+/** Levels that the files hold themselves, and how they are read. */
+async function energiesInForce(ensembleId: string): Promise<EnergiesInForce[]> {
+  const rows = await db
+    .select({
+      level: columns.name,
+      from: columns.origin,
+      unit: columns.unit,
+      kind: columns.energyKind,
+      kindStated: columns.kindStated,
+      temperature: columns.temperature,
+    })
+    .from(columns)
+    .where(
+      and(
+        eq(columns.ensembleId, ensembleId),
+        eq(columns.kind, "energy"),
+        sql`${columns.origin} regexp '^(key|number|field):'`,
+      ),
+    )
+    .orderBy(asc(columns.ordinal));
+  return rows.map(({ from, unit, kind, ...row }) => ({
+    ...row,
+    from: from ?? "",
+    unit: unit ?? "",
+    kind: kind ?? "electronic",
+  }));
+}
+
+/** What held frames were made into; a guest of one ensemble sees no other. */
+async function findBecame(grant: Grant, ensembleId: string): Promise<IntakeView["became"]> {
+  if (grant.role === "guest" || grant.onlyOwnOfToken !== null) return [];
+  const entries = await db
+    .select({ data: logbook.data })
+    .from(logbook)
+    .where(and(eq(logbook.ensembleId, ensembleId), eq(logbook.type, "split-off")));
+  const made = entries.flatMap(({ data }) => {
+    const read = splitFrames.safeParse(data);
+    return read.success ? [read.data] : [];
+  });
+  if (made.length === 0) return [];
+  const living = await db
+    .select({ id: ensembles.id, name: ensembles.name })
+    .from(ensembles)
+    .where(
+      and(
+        eq(ensembles.teamId, grant.teamId),
+        isNull(ensembles.deletedAt),
+        inArray(
+          ensembles.id,
+          made.map((one) => one.ensembleId),
+        ),
+      ),
+    );
+  return living.map(({ id, name }) => ({
+    ensembleId: id,
+    name,
+    frames: made.filter((one) => one.ensembleId === id).flatMap((one) => one.frames),
+  }));
+}
+
 /** The intake report of an ensemble. */
 export async function loadIntake(options: { actor: Actor; ensembleId: string }): Promise<IntakeView> {
-  const { ensembleId } = await accessEnsemble(options.actor, "read", options.ensembleId);
-  const [strip, held, remarked, messages, asked, own] = await Promise.all([
+  const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
+  const { ensembleId } = grant;
+  const [strip, held, remarked, messages, asked, own, inForce, became] = await Promise.all([
     intakeStrip(ensembleId),
     findFrames(ensembleId, "held"),
     findFrames(ensembleId, "remarked"),
     findMessages(ensembleId),
     findQuestions(ensembleId),
     db.select({ answers: ensembles.answers }).from(ensembles).where(eq(ensembles.id, ensembleId)),
+    energiesInForce(ensembleId),
+    findBecame(grant, ensembleId),
   ]);
   const waiting = strip.split("w").length - 1;
   const answered = asked.find(({ code }) => code === "energy-from")?.answered;
   const energyFrom = answered ?? own[0]?.answers.energyFrom ?? null;
-  return { strip, held, remarked, waiting, messages, questions: asked, energyFrom };
+  return { strip, held, remarked, waiting, messages, questions: asked, energyFrom, inForce, became };
 }

@@ -5,7 +5,7 @@ import { columns, ensembleFiles, ensembles, frames, series } from "../../db/sche
 import { env } from "../../env.server.ts";
 import { uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
-import { canBeSplitOff, splitName } from "../../lib/intake/split-name.ts";
+import { canBeSplitOff, splitName, splitWords } from "../../lib/intake/split-name.ts";
 import { FrameCutter, type FramePlace } from "../../lib/text/cut-frames.ts";
 import { type Actor, accessEnsemble, accessTeam, type Grant } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
@@ -106,16 +106,13 @@ async function* cut(
   if (rest.length > 0) yield Buffer.concat(rest);
 }
 
-/** "night-run.xyz.gz" and frames from 7 on: "night-run, frame 7 and 2 more.xyz". */
-function fileName(
-  file: { name: string; entry: string | null; format: string },
-  held: readonly HeldFrame[],
-): string {
+/** "night-run.xyz.gz" and frames of another composition: "night-run, C4H10.xyz". The logbook names the frames. */
+function fileName(file: { name: string; entry: string | null; format: string }, note: string | null): string {
   const name = file.entry ?? file.name;
   const stem = name.replace(/(\.(xyz|extxyz|txt|sdf|sd|mol))?(\.gz)?$/i, "") || name;
-  const more = held.length > 1 ? ` and ${held.length - 1} more` : "";
   const ending = file.format.startsWith("SDF") ? "sdf" : "xyz";
-  return `${stem.slice(0, 200)}, frame ${held[0]?.number ?? 0}${more}.${ending}`;
+  const words = splitWords(note).replace(/[/\\:]+\s*/g, " ");
+  return `${stem.slice(0, 120)}, ${words.slice(0, 100)}.${ending}`;
 }
 
 async function* parts(
@@ -134,7 +131,7 @@ async function* parts(
     if (held.length === 0) continue;
     const places = await placesIn(at, file.position, held);
     const data = Readable.from(cut(file, places));
-    yield { kind: "file", name: "file", filename: fileName(file, held), data };
+    yield { kind: "file", name: "file", filename: fileName(file, parent.note), data };
   }
 }
 
