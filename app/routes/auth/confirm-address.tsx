@@ -1,7 +1,5 @@
-import { data, Form, href, redirect } from "react-router";
-import { Door } from "~/components/layout/door";
-import { ButtonLink, SubmitButton } from "~/components/ui/button";
-import { Note } from "~/components/ui/note";
+import { data, href, redirect } from "react-router";
+import { LetterDoor } from "~/components/layout/letter-door";
 import { requestIdContext } from "~/context";
 import { callerOf } from "~/middleware/caller.server";
 import { confirmAddress, findAddressChange } from "~/services/account/change-address.server";
@@ -31,30 +29,19 @@ export async function action({ request, params, context }: Route.ActionArgs) {
   });
 }
 
-export default function Page({ loaderData, actionData }: Route.ComponentProps) {
-  if (loaderData.email === null) {
-    return (
-      <Door
-        rule="held"
-        title="This link has ended"
-        lead="It was used, is older than a day, or a newer one was sent."
-      >
-        <ButtonLink kind="primary" wide to={href("/account")}>
-          Go to your account
-        </ButtonLink>
-      </Door>
-    );
-  }
+export default function Page({ loaderData: { email }, actionData }: Route.ComponentProps) {
   return (
-    <Door title="Confirm the address" lead={`Letters of your account go to ${loaderData.email}.`}>
-      {actionData ? (
-        <div role="alert">
-          <Note tone="danger">{actionData.message}</Note>
-        </div>
-      ) : null}
-      <Form method="post">
-        <SubmitButton wide>Use this address</SubmitButton>
-      </Form>
-    </Door>
+    <LetterDoor
+      open={email !== null}
+      title="Confirm the address"
+      lead={`Letters of your account go to ${email}.`}
+      act="Use this address"
+      refused={actionData?.message}
+      ended={{
+        lead: "It was used, is older than a day, or a newer one was sent.",
+        to: href("/account"),
+        label: "Go to your account",
+      }}
+    />
   );
 }

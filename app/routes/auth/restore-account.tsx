@@ -1,7 +1,5 @@
-import { data, Form, href, redirect } from "react-router";
-import { Door } from "~/components/layout/door";
-import { ButtonLink, SubmitButton } from "~/components/ui/button";
-import { Note } from "~/components/ui/note";
+import { data, href, redirect } from "react-router";
+import { LetterDoor } from "~/components/layout/letter-door";
 import { requestIdContext } from "~/context";
 import { callerOf } from "~/middleware/caller.server";
 import { isRestoreOpen, restoreAccount } from "~/services/account/delete-account.server";
@@ -32,28 +30,14 @@ export async function action({ request, params, context }: Route.ActionArgs) {
 }
 
 export default function Page({ loaderData, actionData }: Route.ComponentProps) {
-  if (!loaderData.open) {
-    return (
-      <Door rule="held" title="This link has ended" lead="It was used, or the 30 days are over.">
-        <ButtonLink kind="primary" wide to={href("/login")}>
-          Sign in
-        </ButtonLink>
-      </Door>
-    );
-  }
   return (
-    <Door
+    <LetterDoor
+      open={loaderData.open}
       title="Bring the account back"
       lead="It opens with the password and the teams that it had. Its tokens stay ended."
-    >
-      {actionData ? (
-        <div role="alert">
-          <Note tone="danger">{actionData.message}</Note>
-        </div>
-      ) : null}
-      <Form method="post">
-        <SubmitButton wide>Bring it back</SubmitButton>
-      </Form>
-    </Door>
+      act="Bring it back"
+      refused={actionData?.message}
+      ended={{ lead: "It was used, or the 30 days are over.", to: href("/login"), label: "Sign in" }}
+    />
   );
 }
