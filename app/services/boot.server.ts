@@ -2,7 +2,7 @@ import { closeDatabase } from "../db/client.server.ts";
 import { migrateDatabase } from "../db/migrate.server.ts";
 import { env } from "../env.server.ts";
 import { sweepEnded } from "./auth/sweep.server.ts";
-import { settleBackground } from "./background.server.ts";
+import { inBackground, settleBackground } from "./background.server.ts";
 import { sweepUploads } from "./ensembles/sweep-uploads.server.ts";
 import { workerBundle, workerBundleExists } from "./jobs/pool.server.ts";
 import { startJobs } from "./jobs/run-jobs.server.ts";
@@ -13,6 +13,7 @@ import { remindOfLinks } from "./mail/remind-links.server.ts";
 import { startMail, stopMail } from "./mail/send-mail.server.ts";
 import { purgeDeleted } from "./purge.server.ts";
 import { seedDemo, seedExample } from "./seed/seed-demo.server.ts";
+import { seedEditions } from "./seed/seed-editions.server.ts";
 import { closeDemoAccounts, seedPeople } from "./teams/seed-people.server.ts";
 
 const SWEEP_EVERY_MS = 3_600_000;
@@ -59,6 +60,8 @@ export async function boot(): Promise<Booted> {
   await migrateDatabase();
   const demo = await seed();
   await startJobs();
+  // Their sifts take seconds, which nobody who starts should wait for.
+  if (demo !== null) inBackground("editions of the demo", seedEditions);
   startMail();
   startSweeping();
   return { demo };

@@ -1,7 +1,7 @@
 import { eq } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
-import { ensembles, members, sifts, teams, users } from "~/db/schema.server";
+import { editions, ensembles, members, sifts, teams, users } from "~/db/schema.server";
 import type { Actor } from "~/services/auth/access.server";
 import { findToken } from "~/services/auth/find-token.server";
 import { createSeries } from "~/services/ensembles/create-series.server";
@@ -14,6 +14,7 @@ import { loadIntake } from "~/services/ensembles/load-intake.server";
 import { moveEnsemble, renameEnsemble } from "~/services/ensembles/rename-ensemble.server";
 import { loadLogbook } from "~/services/logbook/load-logbook.server";
 import { seedDemo, seedExample } from "~/services/seed/seed-demo.server";
+import { seedEditions } from "~/services/seed/seed-editions.server";
 import { loadSift } from "~/services/sifts/load-sift.server";
 import { seedPeople } from "~/services/teams/seed-people.server";
 import { createToken } from "~/services/tokens/create-token.server";
@@ -284,6 +285,11 @@ describe("the demo", () => {
     const waited = await call(`/files/sifts/${example?.sift?.id}?wait=60`, {});
     expect(await waited.json()).toMatchObject({ status: "done" });
     expect((await loadExample({ actor: NOBODY }))?.sift?.result?.kept).toHaveLength(7);
+    // It comes with an edition, frozen once.
+    const name = "N-Acetyl-L-alanine N-methylamide";
+    await seedEditions([name]);
+    await seedEditions([name]);
+    expect(await db.select({ title: editions.title }).from(editions)).toEqual([{ title: "First look" }]);
   });
 
   it("on a public server is the example alone, in a team that nobody is in", async () => {

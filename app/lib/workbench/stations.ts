@@ -45,7 +45,7 @@ export function stations(ensemble: EnsembleView, sift: SiftView | null, temperat
         : after(plural(ensemble.properties, "property", "properties"))),
     },
     { path: "trust", name: "Trust", ...trustStation(ready, waits) },
-    { path: "hand-over", name: "Hand-over", ...after("CSV, XYZ, JSON") },
+    { path: "hand-over", name: "Hand-over", ...after("CSV, XYZ, SDF, JSON") },
     { path: "logbook", name: "Logbook", figure: "who did what", state: "done" },
   ];
 }
