@@ -386,7 +386,7 @@ describe("laws", () => {
     });
   });
 
-  it("same input, same bytes", () => {
+  it("same input, same bytes (F12)", () => {
     const text = () => JSON.stringify(runSift(chosen(everyRow, { atoms: "all" })));
     expect(text()).toBe(text());
   });
