@@ -1,3 +1,4 @@
+import { averageErrorsOf } from "~/lib/averages/property-set";
 import type { ComparisonInput } from "~/lib/levels/compare";
 import { type ComparisonIntervals, comparisonIntervals } from "~/lib/levels/intervals";
 import { type PooledMolecule, pooledWindowInterval } from "~/lib/levels/pooled";
@@ -18,6 +19,7 @@ export interface LevelTasks {
     result: ReturnType<typeof pooledWindowInterval>;
   };
   plans: { input: { plans: Plan[]; chosen: number; data: PlanData[] }; result: PlansReport };
+  averages: { input: Parameters<typeof averageErrorsOf>; result: ReturnType<typeof averageErrorsOf> };
 }
 
 export type LevelTaskName = keyof LevelTasks;
@@ -30,6 +32,7 @@ const RUN: { [Name in LevelTaskName]: (input: LevelTasks[Name]["input"]) => Leve
   band: windowBand,
   pooled: ({ molecules, options }) => pooledWindowInterval(molecules, options),
   plans: ({ plans, chosen, data }) => planReport(plans, chosen, data),
+  averages: (input) => averageErrorsOf(...input),
 };
 
 /** Does a task; the same on the thread and in tests. */

@@ -1,9 +1,16 @@
 import { useDeferredValue, useMemo } from "react";
 import { useWorkbench } from "~/components/workbench/workbench-context";
+import { useLevelTask } from "~/hooks/use-level-task";
 import { type Average, averageOf, type Moments } from "~/lib/averages/average";
 import type { AveragesView } from "~/lib/averages/averages-view";
 import { type Contribution, contributionsOf, mostMoving } from "~/lib/averages/contributions";
-import { averageErrorsOf, type PropertyValues, propertyMoments } from "~/lib/averages/property-set";
+import {
+  averageErrorsOf,
+  DRAWN_AT_ONCE,
+  drawWork,
+  type PropertyValues,
+  propertyMoments,
+} from "~/lib/averages/property-set";
 import { type AverageError, DEFAULT_SEED } from "~/lib/averages/uncertainty";
 import { conformerName } from "~/lib/workbench/conformers";
 import { useAveragesState } from "./use-averages-state";
@@ -55,14 +62,15 @@ export function useAverages(
   );
   // Draws may lag behind the slider; the averages themselves do not.
   const settledK = useDeferredValue(temperatureK);
-  const drawn = useMemo(() => {
+  const wanted = useMemo((): Parameters<typeof averageErrorsOf> | null => {
     if (weighed === null || sigma === null || prepared.length === 0) return null;
-    return averageErrorsOf(
+    return [
       prepared.map((one) => one.moments),
       { energies: weighed.energies, weights: weighed.weights.values, temperatureK: settledK },
       { sigma, seed: DEFAULT_SEED },
-    );
+    ];
   }, [prepared, weighed, sigma, settledK]);
+  const drawn = useDrawn(wanted);
   return useMemo(() => {
     if (weighed === null) return null;
     const temperatures = [...new Set([...chosen, temperatureK])].sort((a, b) => a - b);
@@ -81,6 +89,14 @@ export function useAverages(
       }),
     };
   }, [weighed, chosen, temperatureK, prepared, drawn]);
+}
+
+/** Draws of small sets at once, of large ones on a thread: those are there a moment later. */
+function useDrawn(wanted: Parameters<typeof averageErrorsOf> | null) {
+  const large = wanted !== null && drawWork(wanted[1].energies.length, wanted[0].length) > DRAWN_AT_ONCE;
+  const here = useMemo(() => (wanted === null || large ? null : averageErrorsOf(...wanted)), [wanted, large]);
+  const apart = useLevelTask("averages", large ? wanted : null);
+  return large ? apart : here;
 }
 
 export interface Mover {

@@ -5,8 +5,7 @@ import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { ABSENT, capital, countWord, formatCount, formatEnergy, formatPopulation } from "~/lib/format";
-import { alternativesCsv } from "~/lib/plan/alternatives-csv";
-import { marginalCosts } from "~/lib/plan/front";
+import { alternativesCsv, marginalOf } from "~/lib/plan/alternatives-csv";
 import { MAX_ALTERNATIVES, type PlanSet } from "~/lib/plan/plan";
 import type { PlansReport } from "~/lib/plan/report";
 import { costFigure, formatHours } from "~/lib/plan/words";
@@ -28,7 +27,7 @@ export function AlternativesTable({
   const { plans, chosen } = set;
   const outcomes = report?.outcomes ?? null;
   const deepest = plans.reduce((most, { plan }) => Math.max(most, plan.steps.length), 1);
-  const marginal = outcomes ? marginalCosts(outcomes.map((o) => ({ kept: o.kept.mean, cost: o.cost }))) : [];
+  const marginal = outcomes ? marginalOf(set, outcomes) : [];
   const row = (label: string, unit: string, cell: (k: number) => string) => ({ label, unit, cell });
   const rows = [
     ...Array.from({ length: deepest }, (_, s) => {

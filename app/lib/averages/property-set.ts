@@ -49,6 +49,9 @@ export function averageDraws(conformers: number, quantities: number): number {
   return Math.min(DRAWS, Math.max(FEWEST, fitting));
 }
 
+/** More multiplications than these (about 0.1 s) belong on a thread, in the server and in the page. */
+export const DRAWN_AT_ONCE = 4e7;
+
 /** Multiplications that the draws for so many quantities over so many conformers take. */
 export function drawWork(conformers: number, quantities: number): number {
   return averageDraws(conformers, quantities) * conformers * (quantities + 10);

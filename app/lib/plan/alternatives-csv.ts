@@ -1,7 +1,22 @@
 import { toCsv } from "../workbench/tsv.ts";
 import type { PlanOutcome } from "./evaluate.ts";
 import { marginalCosts } from "./front.ts";
-import type { PlanSet } from "./plan.ts";
+import type { Plan, PlanSet } from "./plan.ts";
+
+/** True where the hours of a step are not known: such a plan has no cost to compare. */
+const open = (plan: Plan) => plan.steps.some(({ hours }) => hours.from === "unknown");
+
+/**
+ * Core hours of each further percent between the plans of a set whose costs are known.
+ *
+ * @param outcomes one a plan, in the order of the set
+ * @returns by place; null as in `marginalCosts`, and for a plan without a known cost
+ */
+export function marginalOf({ plans }: PlanSet, outcomes: readonly PlanOutcome[]): (number | null)[] {
+  const places = plans.flatMap(({ plan }, k) => (open(plan) ? [] : [k]));
+  const costs = marginalCosts(places.map((k) => ({ kept: outcomes[k]!.kept.mean, cost: outcomes[k]!.cost })));
+  return plans.map((_, k) => costs[places.indexOf(k)] ?? null);
+}
 
 /**
  * Plans side by side, a row each: windows and structures of every step, cost, waiting, population kept and lost, and the
@@ -9,9 +24,10 @@ import type { PlanSet } from "./plan.ts";
  *
  * @param outcomes one a plan, in the order of the set
  */
-export function alternativesCsv({ plans, chosen }: PlanSet, outcomes: readonly PlanOutcome[]): string {
+export function alternativesCsv(set: PlanSet, outcomes: readonly PlanOutcome[]): string {
+  const { plans, chosen } = set;
   const deepest = plans.reduce((most, { plan }) => Math.max(most, plan.steps.length), 0);
-  const marginal = marginalCosts(outcomes.map(({ kept, cost }) => ({ kept: kept.mean, cost })));
+  const marginal = marginalOf(set, outcomes);
   const steps = Array.from({ length: deepest }, (_, s) => s);
   return toCsv(
     [
@@ -29,7 +45,6 @@ export function alternativesCsv({ plans, chosen }: PlanSet, outcomes: readonly P
     ],
     plans.map(({ name, plan }, k) => {
       const outcome = outcomes[k]!;
-      const open = plan.steps.some(({ hours }) => hours.from === "unknown");
       const { kept } = outcome;
       return [
         name,
@@ -38,13 +53,13 @@ export function alternativesCsv({ plans, chosen }: PlanSet, outcomes: readonly P
           const [step, of] = [plan.steps[s], outcome.steps[s]];
           return step && of ? [step.name, of.windowKcal ?? "all", of.carried.mean] : ["", null, null];
         }),
-        ...(open ? [null, null] : [outcome.cost, outcome.wall]),
+        ...(open(plan) ? [null, null] : [outcome.cost, outcome.wall]),
         100 * kept.mean,
         100 * kept.low,
         100 * kept.high,
         100 * Math.max(0, 1 - kept.mean),
         100 * outcome.lowestKept,
-        open ? null : (marginal[k] ?? null),
+        marginal[k] ?? null,
       ];
     }),
   );

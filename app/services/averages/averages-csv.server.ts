@@ -1,7 +1,13 @@
 import { db } from "../../db/client.server.ts";
 import { averageOf } from "../../lib/averages/average.ts";
 import { averagesCsv } from "../../lib/averages/averages-csv.ts";
-import { averageErrorsOf, averagesRows, drawWork, propertyMoments } from "../../lib/averages/property-set.ts";
+import {
+  averageErrorsOf,
+  averagesRows,
+  DRAWN_AT_ONCE,
+  drawWork,
+  propertyMoments,
+} from "../../lib/averages/property-set.ts";
 import { DEFAULT_SEED } from "../../lib/averages/uncertainty.ts";
 import { STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
 import { type Actor, accessSift } from "../auth/access.server.ts";
@@ -12,13 +18,10 @@ import { findSift } from "../sifts/find-sift.server.ts";
 import { findProperties, propertyValues } from "./property-set.server.ts";
 import { mirrorMerged, weighedSet } from "./weighed-set.server.ts";
 
-/** More multiplications than these (about 0.1 s) are done in a thread: others ask meanwhile. */
-const DRAWN_HERE = 4e7;
-
 /** What the error of the level makes of the averages; the same digits here and in a thread. */
 async function errorsOf(...input: Parameters<typeof averageErrorsOf>) {
   const [moments, weighed, error] = input;
-  if (drawWork(weighed.energies.length, moments.length) <= DRAWN_HERE) {
+  if (drawWork(weighed.energies.length, moments.length) <= DRAWN_AT_ONCE) {
     return averageErrorsOf(moments, weighed, error).errors;
   }
   const { energies, weights, temperatureK } = weighed;
