@@ -15,6 +15,11 @@ import { type PairPoint, percent } from "./pair-points";
 import type { Comparison } from "./use-comparison";
 
 const FIRST_ROWS = 12;
+
+/** A level may be called "DLPNO-CCSD(T)/def2-TZVP//B3LYP-D3/6-31G(d)": its head breaks anywhere rather than widen the page. */
+const LONG_NAMES =
+  "min-w-22 whitespace-normal! [overflow-wrap:anywhere] max-sm:min-w-18 [&_span]:whitespace-normal";
+
 /** More rows than a page carries without stumbling; the CSV has all. */
 const MOST_ROWS = 1000;
 
@@ -80,10 +85,10 @@ export function ComparedTable({
         <thead>
           <tr>
             <Th>Conformer</Th>
-            <Th align="right" unit="kcal/mol" {...head("level")}>
+            <Th align="right" unit="kcal/mol" className={LONG_NAMES} {...head("level")}>
               <LevelName name={level.name} ordinal={level.ordinal} />
             </Th>
-            <Th align="right" unit="kcal/mol" {...head("reference")}>
+            <Th align="right" unit="kcal/mol" className={LONG_NAMES} {...head("reference")}>
               <LevelName name={reference.name} ordinal={reference.ordinal} />
             </Th>
             <Th align="right" unit="kcal/mol" {...head("deviation")}>
@@ -95,10 +100,10 @@ export function ComparedTable({
             <Th className="max-sm:hidden" {...head("moves")}>
               Moves
             </Th>
-            <Th unit={`${level.name}, %`} className="max-xl:hidden">
+            <Th unit={`${level.name}, %`} className={`max-xl:hidden ${LONG_NAMES}`}>
               Population
             </Th>
-            <Th unit={`${reference.name}, %`} className="max-xl:hidden">
+            <Th unit={`${reference.name}, %`} className={`max-xl:hidden ${LONG_NAMES}`}>
               Population
             </Th>
           </tr>
