@@ -1,3 +1,4 @@
+import { readTyped } from "./format.ts";
 import { STANDARD_TEMPERATURE_K } from "./units.ts";
 
 /**
@@ -110,11 +111,11 @@ export function readState(params: URLSearchParams): WorkbenchState {
   return {
     sift: ID.test(params.get("sift") ?? "") ? params.get("sift") : null,
     temperatureK:
-      readNumber(params.get("T"), TEMPERATURE_RANGE_K[0], TEMPERATURE_RANGE_K[1]) ?? start.temperatureK,
+      readNumber(params.get("T"), TEMPERATURE_RANGE_K[0], TEMPERATURE_RANGE_K[1], "K") ?? start.temperatureK,
     windowKcal:
       params.get("w") === "none"
         ? null
-        : (readNumber(params.get("w"), 1e-6, MAX_WINDOW_KCAL) ?? start.windowKcal),
+        : (readNumber(params.get("w"), 1e-6, MAX_WINDOW_KCAL, "kcal/mol") ?? start.windowKcal),
     selected: params.has("sel") ? readCounts(params.get("sel"), MAX_SELECTED) : null,
     atoms: readCounts(params.get("at"), MAX_PICKED).map((atom) => atom - 1),
     align: readAtoms(params.get("al")),
@@ -195,9 +196,13 @@ export function searchOf(params: URLSearchParams): string {
   return text === "" ? "" : `?${text}`;
 }
 
-function readNumber(text: string | null, least: number, most: number): number | null {
-  if (text === null || !NUMBER.test(text)) return null;
-  const value = Number(text);
+/** With `unit` as a person types it into a form, who may write a comma and the unit. */
+function readNumber(text: string | null, least: number, most: number, unit?: string): number | null {
+  if (text === null) return null;
+  const typed = unit === undefined ? null : readTyped(text, unit);
+  const plain = typed === null ? text : writeNumber(typed);
+  if (!NUMBER.test(plain)) return null;
+  const value = Number(plain);
   return value >= least && value <= most ? value : null;
 }
 

@@ -2,9 +2,8 @@ import { gzipSync } from "node:zlib";
 import { and, eq } from "drizzle-orm";
 import { beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
-import { logbook } from "~/db/schema.server";
+import { ensembles, logbook } from "~/db/schema.server";
 import type { Actor } from "~/services/auth/access.server";
-import { deleteEnsemble } from "~/services/ensembles/delete-ensemble.server";
 import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
 import { loadIntake } from "~/services/ensembles/load-intake.server";
 import { loadSource } from "~/services/ensembles/load-source.server";
@@ -100,7 +99,7 @@ describe("held frames of something else", () => {
     const second = await splitOff({ actor, ensembleId: parent.id, frame: 5 });
     expect(second).toEqual({ ...first, created: false });
     expect(await entries(parent.id, "split-off")).toHaveLength(1);
-    await deleteEnsemble({ actor, ensembleId: first.ensembleId });
+    await db.update(ensembles).set({ deletedAt: new Date() }).where(eq(ensembles.id, first.ensembleId));
     expect((await loadIntake({ actor, ensembleId: parent.id })).became).toEqual([]);
   });
 

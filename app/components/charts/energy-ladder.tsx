@@ -43,7 +43,8 @@ export function EnergyLadder({
     <ChartFrame
       title="Energy ladder"
       fileName="energy-ladder"
-      note={notes.length > 0 ? notes.join(" ") : undefined}
+      // They are about the drawing: the table that stands in for it without script holds every conformer.
+      note={notes.length > 0 ? <span className="noscript:hidden">{notes.join(" ")}</span> : undefined}
       data={{
         columns: [
           { name: "conformer" },

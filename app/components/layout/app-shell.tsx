@@ -113,7 +113,7 @@ export const CAUTION =
 
 function Foot({ recipe, results }: { recipe?: ReactNode; results: boolean }) {
   return (
-    <footer className="border-t border-rule text-xs text-ink-3">
+    <footer className="break-inside-avoid border-t border-rule text-xs text-ink-3">
       <div className={`flex flex-wrap justify-between gap-x-6 gap-y-2 pt-4 pb-8 ${pageClass}`}>
         <div className="grid max-w-[60rem] gap-1">
           {recipe ? <p className="figures">{recipe}</p> : null}

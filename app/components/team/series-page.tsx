@@ -230,7 +230,7 @@ function NoEnsembles({ data, onFiles }: { data: SeriesPageData; onFiles: (files:
       >
         Drop files anywhere on this page, or choose them.
         {example
-          ? " The finished one shows what becomes of them. You may try everything there; nothing is kept."
+          ? " The finished one shows what becomes of them. Its temperature, window and tolerances can be moved there; nothing is kept."
           : ""}
       </StatePanel>
       <Dropzone

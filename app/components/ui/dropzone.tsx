@@ -154,7 +154,9 @@ export function Dropzone({ onFiles, accept, disabled, hint }: ChooserProps & { h
           choose them
           <HiddenInput id={id} onFiles={onFiles} accept={accept} disabled={disabled} />
         </label>
-        , or paste text
+        <span className="pointer-coarse:hidden">
+          , or paste their text: Ctrl+V or Cmd+V anywhere on this page
+        </span>
       </p>
       <p className="text-xs text-ink-3">{hint}</p>
     </div>

@@ -45,15 +45,18 @@ export function Field({
   children,
 }: FieldNotes & { id: string; className?: string; children: ReactNode }) {
   return (
-    <div className={`min-w-0 ${className}`}>
-      <div className={hideLabel ? "sr-only" : "mb-2 flex items-baseline justify-between gap-2"}>
+    <div className={`relative min-w-0 ${className}`}>
+      <div className={hideLabel ? "sr-only" : "mb-2 flex items-baseline"}>
         <label htmlFor={id} className={labelClass}>
           {label}
         </label>
-        {aside ? <span className="text-xs">{aside}</span> : null}
       </div>
       {children}
       <FieldFoot id={id} help={help} error={error} />
+      {/* Seen beside the label, reached after the control: whoever tabs wants to type first. */}
+      {aside ? (
+        <span className="absolute -top-1 right-0 inline-flex min-h-6 items-center text-xs">{aside}</span>
+      ) : null}
     </div>
   );
 }

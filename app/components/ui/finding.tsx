@@ -15,7 +15,12 @@ export function SectionHead({ title, aside, id }: { title: ReactNode; aside?: Re
 /** The one or two sentences a section opens with: computed, in plain words. `more` says the rest in small. */
 export function Finding({ children, more, wide }: { children: ReactNode; more?: ReactNode; wide?: boolean }) {
   return (
-    <div className={`figures mt-2 ${wide ? "max-w-[60rem]" : "max-w-[46rem]"}`}>
+    // Takes the focus where an act took away the control that had it.
+    <div
+      data-finding=""
+      tabIndex={-1}
+      className={`figures mt-2 outline-none ${wide ? "max-w-[60rem]" : "max-w-[46rem]"}`}
+    >
       <p className="text-base text-pretty sm:text-lg">{children}</p>
       {more ? <p className="mt-1 text-ink-2">{more}</p> : null}
     </div>

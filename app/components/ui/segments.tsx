@@ -43,7 +43,7 @@ export function Segments<V extends string>({
         {options.map((option) => (
           <label
             key={option.value}
-            className={`relative grid place-items-center border-l border-rule-2 font-medium whitespace-nowrap text-ink-2 first:rounded-l-sm first:border-l-0 last:rounded-r-sm hover:bg-sunk has-checked:bg-action has-checked:text-on-action has-disabled:text-ink-off has-[:focus-visible]:z-1 has-[:focus-visible]:outline-2 has-[:focus-visible]:outline-offset-2 has-[:focus-visible]:outline-mark max-sm:px-2 pointer-coarse:h-11 ${height}`}
+            className={`relative grid place-items-center border-l border-rule-2 font-medium whitespace-nowrap text-ink-2 first:rounded-l-sm first:border-l-0 last:rounded-r-sm hover:bg-sunk has-checked:bg-action has-checked:text-on-action has-disabled:text-ink-off has-[:checked:disabled]:bg-sunk has-[:checked:disabled]:text-ink has-[:checked:disabled]:inset-ring has-[:checked:disabled]:inset-ring-edge has-[:focus-visible]:z-1 has-[:focus-visible]:outline-2 has-[:focus-visible]:outline-offset-2 has-[:focus-visible]:outline-mark max-sm:px-2 pointer-coarse:h-11 ${height}`}
           >
             <input
               type="radio"

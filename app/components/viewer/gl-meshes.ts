@@ -144,7 +144,7 @@ export function strongSticks(scene: Scene, figure: Figure, place: number, palett
   const writer = new SegmentWriter(bonds.length + scene.shown.length);
   const z = (atom: number) => scene.elements[atom] ?? 0;
   const rgb = (atom: number) => mixed(palette.view.rgb, palette[atomToken(z(atom))].rgb, own);
-  const { wider, own } = layerOf(scene.mode === "overlay" ? place : 0);
+  const { wider, own } = layerOf(scene.mode === "overlay" ? place : 0, scene.faint.length > 0);
   const bonded = new Set<number>(bonds);
   for (let k = 0; k + 1 < bonds.length; k += 2) {
     const [a, b] = [bonds[k] ?? 0, bonds[k + 1] ?? 0];

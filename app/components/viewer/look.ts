@@ -37,16 +37,22 @@ export function stickRadius(a: number, b: number): number {
   return a === 1 || b === 1 ? HYDROGEN_RADIUS : STICK_RADIUS;
 }
 
+/** Å; what sticks lose in radius where lines lie around them. */
+const SLIMMER = 0.035;
+
 /**
  * How the structures in atom colours of an overlay are told apart: the first is solid, each further one wider, paler and
  * a little behind, so that its rim shows even where it lies exactly on the first.
  *
+ * Among lines the first is thin: a conformer a fifth of an ångström away then runs beside it, not inside it.
+ *
  * @param behind 0 for the first one, and for all where they stand side by side
+ * @param among true where further conformers lie around them as lines
  * @returns `wider` in Å, `own` the share of its own colour in that of the ground, `back` in Å away from the reader
  */
-export function layerOf(behind: number): { wider: number; own: number; back: number } {
+export function layerOf(behind: number, among = false): { wider: number; own: number; back: number } {
   const own = [1, 0.55, 0.42, 0.34][behind] ?? 0.34;
-  return { wider: 0.055 * behind, own, back: 0.12 * behind };
+  return { wider: 0.055 * behind - (among ? SLIMMER : 0), own, back: 0.12 * behind };
 }
 
 /** Width of a line in CSS pixels: 1 to 4 with the step of the tint. */

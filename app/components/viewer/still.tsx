@@ -167,7 +167,7 @@ function Sticks({
   camera: Camera;
   cell: Cell;
 }) {
-  const { wider, own } = layerOf(behind);
+  const { wider, own } = layerOf(behind, scene.faint.length > 0);
   const casing = tokenColour(figure.held && !figure.change ? "held-edge" : "view");
   // Mixed with the ground, not translucent: where sticks meet they would darken each other.
   const paint = (token: Token, z: number) =>

@@ -97,7 +97,8 @@ export function Viewer(props: ViewerProps) {
   const own = lead && picked.length > 0 ? [pickText(scene, lead, picked)] : [];
   const texts = measures.length > 0 ? measures.map(({ label, text }) => `${label} ${text}`) : own;
   return (
-    <figure className="min-w-0">
+    // On paper an empty box says nothing: it is left out where no structure has come yet.
+    <figure className={`min-w-0 ${props.conformers.length === 0 ? "print:hidden" : ""}`}>
       <div
         ref={fullScreen.box}
         className="relative h-62 overflow-hidden rounded-md border border-rule-2 bg-view lg:h-80 xl:h-98 print:h-98 [&:fullscreen]:rounded-none [&:fullscreen]:border-0"
@@ -168,7 +169,9 @@ function ViewOptions({
             Atom numbers
           </Checkbox>
         </div>
-        <DepthKey className="w-full" />
+        {props.conformers.some(({ population }) => population !== null) ? (
+          <DepthKey className="w-full" />
+        ) : null}
         {props.list}
         <PickAtoms elements={props.elements} picked={props.picked} onPick={props.onPick} />
         {children}

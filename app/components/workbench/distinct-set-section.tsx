@@ -1,6 +1,6 @@
 import { Download } from "lucide-react";
 import { useMemo, useRef, useState } from "react";
-import { href, useLocation } from "react-router";
+import { href, useActionData, useLocation } from "react-router";
 import { Button, buttonClass } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
@@ -12,8 +12,10 @@ import { capital, fixed, formatPercent, formatRmsd, formatSeconds, plural, withU
 import type { SiftRequest } from "~/lib/recipe/recipe";
 import { distinctFinding, joinWords, nearMirror } from "~/lib/workbench/findings";
 import { recipeLine, requestOf } from "~/lib/workbench/recipe-words";
+import type { ActAnswer } from "./act-answer";
 import { DistinctTable } from "./distinct-table";
 import { FindFrame } from "./find-frame";
+import { PlainSiftForm } from "./plain-forms";
 import { OutdatedNote, SectionState } from "./section-state";
 import { SiftSettings } from "./sift-settings";
 import { ToleranceBlock } from "./tolerance-block";
@@ -83,7 +85,14 @@ export function DistinctSetSection() {
       if (settled) gesture.current = "fresh";
     });
   };
-  const fade = `transition-opacity ${draft === null ? "" : "opacity-50"}`;
+  // Who may not compute moves the tolerances for the count alone: the set that is shown stays.
+  const follows = ensemble.mayCompute && draft !== null;
+  const fade = `transition-opacity ${follows ? "opacity-50" : ""}`;
+  const answer = useActionData<ActAnswer>();
+  const back = () => {
+    setCancelled(cancelled + 1);
+    setDraft(null);
+  };
   const finding = result ? distinctFinding(result) : null;
   const startButton = ensemble.mayCompute ? (
     <Button kind="primary" onClick={() => onAsk(request, true)} disabled={asked !== null}>
@@ -110,7 +119,7 @@ export function DistinctSetSection() {
         <SectionState start={startButton} />
       ) : (
         <>
-          <div className={fade} aria-busy={draft !== null}>
+          <div className={fade} aria-busy={follows}>
             <Finding more={finding.second}>{finding.text}</Finding>
           </div>
           {before !== null && before.id !== sift.id ? (
@@ -135,6 +144,7 @@ export function DistinctSetSection() {
             words={`${capital(recipeLine(sift.recipe, null))}.`}
             onDraft={setDraft}
             onAsk={(next, settled) => {
+              if (!ensemble.mayCompute) return;
               if (settled || ensemble.accepted <= MOST_ASKED_ON_THE_WAY) onAsk(next, settled);
             }}
           />
@@ -143,20 +153,26 @@ export function DistinctSetSection() {
             error={error}
             onCancel={() => {
               cancel();
-              setCancelled(cancelled + 1);
-              setDraft(null);
+              back();
             }}
           />
+          {ensemble.mayCompute ? <PlainSiftForm ensemble={ensemble} request={request} /> : null}
+          {answer && answer.message !== undefined ? (
+            <p role="alert" className="mt-2 text-danger">
+              {answer.message}
+            </p>
+          ) : null}
           {ensemble.mayCompute ? null : (
             <p className="mt-3 text-xs text-ink-3 noscript:hidden print:hidden">
               {ensemble.role === "guest"
-                ? "This is an example: the settings show how it was computed. In a team of your own they can be moved."
-                : "You read this team’s work: an analyst or an owner can move these settings."}
+                ? "This is an example: move the tolerances to see what they would keep. It is counted in this browser, and nothing is stored; in a team of your own the set follows and all settings can be moved."
+                : "You read this team’s work: move the tolerances to see what they would keep. It is counted in this browser, and nothing is stored; an analyst or an owner can make that the set."}
             </p>
           )}
           <MirrorWarning />
           <ToleranceBlock
             draft={draft}
+            onBack={ensemble.mayCompute ? null : back}
             onTake={
               ensemble.mayCompute
                 ? (rmsdTolerance) => {
@@ -167,7 +183,7 @@ export function DistinctSetSection() {
                 : null
             }
           />
-          <div className={fade} aria-busy={draft !== null}>
+          <div className={fade} aria-busy={follows}>
             <FindFrame />
             <DistinctTable
               tools={

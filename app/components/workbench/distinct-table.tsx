@@ -381,9 +381,7 @@ function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly Droppe
               <Td align="right">
                 <LayOver
                   frame={frame.frame}
-                  laid={
-                    selected.length === 2 && selected[0] === row.frame && selected[1] === frame.frame
-                  }
+                  laid={selected.length === 2 && selected[0] === row.frame && selected[1] === frame.frame}
                   onLay={() => show([row.frame, frame.frame])}
                 />
               </Td>

@@ -1,6 +1,6 @@
 import { href } from "react-router";
 import { CopyButton } from "~/components/ui/copy-button";
-import { linkClass, TextLink } from "~/components/ui/text-link";
+import { linkClass, TextLink, targetClass } from "~/components/ui/text-link";
 import { formatBytes, formatChecksum, plural } from "~/lib/format";
 import { useWorkbench } from "./workbench-context";
 
@@ -24,14 +24,14 @@ export function FilePanel() {
               {file.batch > 1 ? `, batch ${file.batch}` : ""}
               {file.archive ? `, out of ${file.archive}` : ""}
             </p>
-            <p className="flex flex-wrap gap-x-4 gap-y-1 text-xs text-ink-3">
+            <p className="flex flex-wrap items-center gap-x-4 gap-y-1 text-xs text-ink-3">
               <span title={file.sha256}>SHA-256 {formatChecksum(file.sha256)}</span>
               <CopyButton as="link" text={file.sha256}>
                 Copy
               </CopyButton>
               {guest ? null : (
                 <a
-                  className={`${linkClass} print:hidden`}
+                  className={`${linkClass} ${targetClass} print:hidden`}
                   download
                   href={href("/files/ensembles/:id/sources/:position", {
                     id: ensemble.id,

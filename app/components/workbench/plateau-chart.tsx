@@ -109,7 +109,7 @@ const fine = (energyKcal: number) =>
 /** Holds the place of the chart while the frames are fetched or counted. */
 export function PlateauPlace({ children }: { children: React.ReactNode }) {
   return (
-    <div className="min-w-0">
+    <div className="min-w-0 print:hidden">
       <h3 className="mb-2 text-sm font-semibold">{TITLE}</h3>
       <div className="relative">
         <Skeleton className="h-72 w-full" />

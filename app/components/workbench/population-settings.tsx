@@ -24,9 +24,9 @@ export function PopulationSettings() {
   return (
     <SettingsStrip
       words={settingsWords}
-      columns="grid-cols-2 sm:grid-cols-[minmax(0,1fr)_minmax(0,1fr)] xl:grid-cols-[minmax(8rem,0.8fr)_minmax(0,1.9fr)_9rem_11rem]"
+      columns="grid-cols-2 max-[24rem]:grid-cols-1 sm:grid-cols-[minmax(0,1fr)_minmax(0,1fr)] xl:grid-cols-[minmax(8rem,0.8fr)_minmax(0,1.9fr)_9rem_11rem]"
     >
-      <div className="min-w-0 max-xl:col-span-2 max-xl:sm:col-span-1">
+      <div className="min-w-0 max-sm:col-span-full">
         <p className={`mb-2 ${labelClass}`}>Level</p>
         <p className="flex min-h-9 items-center">
           {level ? <LevelName name={level.name} ordinal={level.ordinal} /> : "none"}
@@ -34,7 +34,7 @@ export function PopulationSettings() {
       </div>
       <SliderField
         label="Temperature"
-        className="max-xl:col-span-2 max-xl:sm:col-span-1"
+        className="max-sm:col-span-full"
         value={temperatureK}
         min={TEMPERATURE_RANGE_K[0]}
         max={TEMPERATURE_RANGE_K[1]}

@@ -15,10 +15,11 @@ import { measureKind, measureLabel, measureValue } from "~/lib/measure/measure";
 import { temperatureWarning } from "~/lib/thermo/temperature-warning";
 import { outsideWindow } from "~/lib/workbench/conformers";
 import { cumulativePopulation } from "~/lib/workbench/cumulative";
-import { populationsFinding, windowFinding } from "~/lib/workbench/findings";
+import { populationsFinding, spreadCaution, windowFinding } from "~/lib/workbench/findings";
 import { energyLadder } from "~/lib/workbench/ladder";
 import { POPULATION_WORDS } from "~/lib/workbench/recipe-words";
 import { ConformerTable, type MeasureColumn } from "./conformer-table";
+import { PlainPopulationForm } from "./plain-forms";
 import { PopulationSettings } from "./population-settings";
 import { OutdatedNote, SectionState } from "./section-state";
 import { ThermoFigures } from "./thermo-figures";
@@ -48,10 +49,12 @@ export function PopulationsSection() {
           <Finding more={[finding.second, ...lines].filter(Boolean).join(" ") || undefined}>
             {finding.text}
           </Finding>
+          <SpreadNote />
           <OutdatedNote />
           {populations ? (
             <>
               <PopulationSettings />
+              <PlainPopulationForm />
               <p className="mt-3 max-w-[46rem] text-xs text-ink-3">
                 {POPULATION_WORDS[level?.energyKind ?? "electronic"]}. {populations.weights.reason}
                 {level?.energyKind === "electronic"
@@ -67,6 +70,18 @@ export function PopulationsSection() {
         </>
       )}
     </section>
+  );
+}
+
+/** Where the energies are spread as those of conformers are not, the populations above mean little. */
+function SpreadNote() {
+  const { rows, level } = useWorkbench();
+  const caution = useMemo(() => spreadCaution(rows, level), [rows, level]);
+  if (caution === null) return null;
+  return (
+    <Note tone="remark" className="mt-4">
+      {caution}
+    </Note>
   );
 }
 

@@ -57,6 +57,7 @@ export function SiftSettings({
     later.cancel();
     onAsk(next, true);
   };
+  // Who may not compute moves the two tolerances alone, which the browser counts for.
   const locked = !ensemble.mayCompute;
   const chirality =
     draft.chirality === undefined || draft.chirality === "auto"
@@ -80,7 +81,6 @@ export function SiftSettings({
         step={0.01}
         unit="Å"
         fieldClass="w-32"
-        disabled={locked}
         write={(value) => fixed(value, 3)}
         wrong="An RMSD tolerance from 0 to 100 Å, for example 0.200."
         onChange={(value) => slide({ rmsdTolerance: value })}
@@ -96,7 +96,7 @@ export function SiftSettings({
           step={0.01}
           unit="kcal/mol"
           fieldClass="w-36"
-          disabled={locked || !energies || tolerance === null}
+          disabled={!energies || tolerance === null}
           write={formatEnergy}
           wrong="An energy tolerance from 0 kcal/mol, for example 0.15."
           onChange={(value) => slide({ energyTolerance: value })}
@@ -142,7 +142,7 @@ export function SiftSettings({
         }
         onChange={(mirror) => set({ mirror })}
       />
-      <div className="grid grid-cols-2 gap-x-6 gap-y-4 sm:col-span-2 xl:grid-cols-4">
+      <div className="grid grid-cols-2 gap-x-6 gap-y-4 max-[24rem]:grid-cols-1 sm:col-span-2 xl:grid-cols-4">
         {ensemble.levels.length > 0 ? (
           <LevelSelect
             label="Level that orders the frames"

@@ -1,5 +1,6 @@
 import { useMemo } from "react";
 import { Button } from "~/components/ui/button";
+import { TextButton } from "~/components/ui/text-link";
 import { plateauKey, recipeKey, useWholeEnsemble, type WholeEnsemble } from "~/hooks/use-whole-ensemble";
 import { DomainError } from "~/lib/errors";
 import { formatBytes, formatSeconds, plural, withUnit } from "~/lib/format";
@@ -32,9 +33,12 @@ function recipeOf(request: SiftRequest, ensemble: EnsembleView): SiftRecipe | nu
  */
 export function ToleranceBlock({
   draft,
+  onBack,
   onTake,
 }: {
   draft: SiftRequest | null;
+  /** Where the set does not follow the settings: back to those of the set that is shown. */
+  onBack: (() => void) | null;
   onTake: ((tolerance: number) => void) | null;
 }) {
   const { ensemble, sift, result } = useWorkbench();
@@ -72,7 +76,13 @@ export function ToleranceBlock({
       : null;
   return (
     <>
-      <LiveLine here={here} isShown={isShown} seconds={whole.count?.seconds ?? null} whole={whole} />
+      <LiveLine
+        here={here}
+        isShown={isShown}
+        seconds={whole.count?.seconds ?? null}
+        whole={whole}
+        onBack={onBack}
+      />
       <p className="mt-4 hidden text-xs text-ink-3 noscript:block">
         How the count hangs on the tolerance is counted in the browser and needs script.
       </p>
@@ -130,19 +140,23 @@ function LiveLine({
   isShown,
   seconds,
   whole,
+  onBack,
 }: {
   here: { tolerance: number; count: number } | null;
   isShown: boolean;
   seconds: number | null;
   whole: WholeEnsemble;
+  onBack: (() => void) | null;
 }) {
+  const after = onBack === null ? "; the set below follows." : "; the set below stays as it is. ";
   return (
     <p className="figures mt-1 min-h-5 text-ink-2" aria-live="polite">
       {isShown || whole.state !== "ready"
         ? null
         : here === null
           ? "Counting with the new settings."
-          : `${plural(here.count, "shape")} with these settings${seconds === null ? "" : `, counted in ${formatSeconds(Math.max(0.01, seconds))}`}; the set below follows.`}
+          : `${plural(here.count, "shape")} with these settings${seconds === null ? "" : `, counted in ${formatSeconds(Math.max(0.01, seconds))}`}${after}`}
+      {isShown || onBack === null ? null : <TextButton onClick={onBack}>Back to its settings</TextButton>}
     </p>
   );
 }

@@ -118,7 +118,7 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
           </TextButton>
         </Note>
       ) : coordinates.missing > 0 && rows.length > 0 ? (
-        <p role="status" className="appear-late mt-2 text-xs text-ink-3">
+        <p role="status" className="appear-late mt-2 text-xs text-ink-3 print:hidden">
           {plural(coordinates.missing, "structure")} on the way
         </p>
       ) : plan.notDrawn > 0 ? (

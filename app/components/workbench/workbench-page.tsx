@@ -1,10 +1,11 @@
 import { ArrowRight, Link2 } from "lucide-react";
-import { type ReactNode, useEffect, useMemo } from "react";
+import { type ReactNode, useEffect, useMemo, useRef } from "react";
 import { href, useLocation, useNavigation, useRevalidator } from "react-router";
 import { AppShell, pageClass } from "~/components/layout/app-shell";
 import { OutsideTorsions, OutsideViewPanel } from "~/components/outside/outside-view";
 import { Button, ButtonLink } from "~/components/ui/button";
 import { showToast } from "~/components/ui/toast";
+import { useFocusRefuge } from "~/hooks/use-focus-refuge";
 import { hasEnded, useRunningSift } from "~/hooks/use-sift";
 import { searchOf, writeState } from "~/lib/url-state";
 import type { EnsembleView, IntakeView, SiftView } from "~/lib/views";
@@ -78,6 +79,8 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
   const base = href("/ensembles/:id", { id: ensemble.id });
   const lowest = result?.kept[0]?.frame;
   const positions = lowest === undefined ? null : (coordinates.positions.get(lowest) ?? null);
+  const sections = useRef<HTMLDivElement>(null);
+  const keepFocus = useFocusRefuge(() => sections.current?.querySelector<HTMLElement>("[data-finding]"));
   const asks = section === "intake" && ensemble.openQuestions > 0;
   return (
     <AppShell
@@ -123,7 +126,10 @@ function Frame({ section, intake, children }: { section: string; intake: IntakeV
           ) : null}
           {section === "intake" ? <FilePanel /> : null}
         </aside>
-        <div className="min-w-0">{children}</div>
+        {/* biome-ignore lint/a11y/noStaticElementInteractions: it watches where the focus of the controls inside is */}
+        <div ref={sections} onFocus={keepFocus} className="min-w-0">
+          {children}
+        </div>
       </div>
     </AppShell>
   );

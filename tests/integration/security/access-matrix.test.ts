@@ -71,7 +71,7 @@ const RULES: Record<string, Rule> = {
 
   "/ensembles/:id": { GET: "302 302 302 404 404", POST: "405 405 405 404 404" },
   "/ensembles/:id/intake": ACTS,
-  "/ensembles/:id/distinct-set": SECTION,
+  "/ensembles/:id/distinct-set": ACTS,
   "/ensembles/:id/compare": ACTS,
   "/ensembles/:id/populations": SECTION,
   "/ensembles/:id/columns": ACTS,
@@ -271,6 +271,7 @@ interface Act {
 
 const ANALYSTS = (reached: number) => `${reached} ${reached} 403`;
 const OWNERS = (reached: number) => `${reached} 403 403`;
+const PLAIN_SIFT = { atoms: "all", mirror: "auto", chirality: "auto", symmetry: "on" };
 const FORM_ACTS: Act[] = [
   // Ids that are not there, or names that do not fit: the role decides first, the object after it.
   ...[
@@ -297,6 +298,12 @@ const FORM_ACTS: Act[] = [
   act("/ensembles/:id/columns", "span", { column: "none" }, "404 404 404"),
   act("/ensembles/:id/averages", "rule", { column: "none", rule: "linear" }, ANALYSTS(404)),
   act("/ensembles/:id/averages", "observe", { observable: "distance", atoms: "1,999" }, ANALYSTS(422)),
+  act(
+    "/ensembles/:id/distinct-set",
+    "sift",
+    { level: "none", rmsdTolerance: "0,2", ...PLAIN_SIFT },
+    ANALYSTS(422),
+  ),
   act("/ensembles/:id/compare", "remove", { outside: "none" }, ANALYSTS(404)),
   act("/ensembles/:id/compare", "restore", { outside: "none" }, ANALYSTS(404)),
   act("/ensembles/:id/plan", "save", { name: "Second", plans: "{}" }, ANALYSTS(422)),
