@@ -504,6 +504,7 @@ export const siftSchema = z
     result: siftResultSchema.nullable(),
     error: z.string().nullable(),
     current: z.boolean().meta({ description: "False where frames or energies changed since." }),
+    warnings: warningsSchema,
   })
   .meta({ id: "Sift" });
 
@@ -625,6 +626,11 @@ export const exportJsonSchema = z
     recipe: siftRecipeSchema,
     temperature: z.number(),
     weights: z.enum(["copies", "degeneracy"]).nullable(),
+    current: z
+      .literal(false)
+      .optional()
+      .meta({ description: "Where frames were held, released or added since the sift; absent else." }),
+    warnings: warningsSchema.optional(),
     conformers: z.array(
       z.looseObject({
         frame: frameNumber,

@@ -17,6 +17,8 @@ export interface ExportSet {
   readonly temperature: number;
   readonly weights: "copies" | "degeneracy" | null;
   readonly conformers: readonly ExportConformer[];
+  /** In words, where frames were held, released or added since it was made; absent where the set is current. */
+  readonly notCurrent?: string;
 }
 
 export interface ExportSource {

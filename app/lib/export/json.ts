@@ -53,6 +53,9 @@ export function* writeJson(
     recipe: set.recipe,
     temperature: set.temperature,
     weights: set.weights,
+    ...(set.notCurrent === undefined
+      ? {}
+      : { current: false, warnings: [{ code: "not-current", message: set.notCurrent }] }),
   };
   const perUnit = set.level && kcalPer(set.level.unit);
   yield `${JSON.stringify(head, null, 2).slice(0, -2)},\n  "conformers": [`;

@@ -81,6 +81,7 @@ function ownFields(set: ExportSet, conformer: ExportConformer, orders: BondOrder
     ["SOURCE_FRAME", source && conformer.frame - source.firstFrame + 1],
     ["SOURCE_SHA256", source?.sha256 ?? null],
     ["SOURCE_ATOMS", conformer.mapping ? mappingText(conformer.mapping) : null],
+    ["NOT_CURRENT", set.notCurrent ?? null],
     ["BOND_ORDERS", ORDER_WORDS[orders.origin]],
   ];
 }

@@ -61,6 +61,7 @@ function commentLine(set: ExportSet, conformer: ExportConformer, withLabels: boo
     ["frame", conformer.frame],
     ["source_frame", source && conformer.frame - source.firstFrame + 1],
     ["source_sha256", source?.sha256 ?? null],
+    ["not_current", set.notCurrent ?? null],
   ];
   const properties = `Properties=species:S:1:pos:R:3${withLabels ? ":label:S:1" : ""}`;
   const written = entries

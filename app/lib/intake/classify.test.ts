@@ -514,6 +514,92 @@ describe("X28, X29, X39, X41, X42", () => {
   });
 });
 
+describe("frames with a bond table", () => {
+  const fluoro = molecule("CC(F)F");
+  const table = { bonds: Int32Array.from(fluoro.graph.bonds), orders: null, charges: null, radicals: null };
+  const hydrogen = fluoro.graph.elements.indexOf(1);
+  const carbon = fluoro.graph.neighbours[fluoro.graph.offsets[hydrogen]!]!;
+  /** One C-H is 1.35 times as long. */
+  const stretched: Molecule = { ...fluoro, positions: fluoro.positions.slice() };
+  for (let axis = 0; axis < 3; axis++) {
+    const from = fluoro.positions[3 * carbon + axis]!;
+    stretched.positions[3 * hydrogen + axis] = from + 1.35 * (fluoro.positions[3 * hydrogen + axis]! - from);
+  }
+  const withTable = (molecules: readonly Molecule[], classifier?: FrameClassifier) =>
+    classify(
+      molecules.map((m, k) => ({ ...frameOf(m, k + 1), table })),
+      classifier,
+    );
+
+  it.each([[[stretched, stretched, fluoro, fluoro]], [[stretched, stretched, fluoro]]])(
+    "are held against it, not against what most distances show",
+    (molecules) => {
+      const result = withTable(molecules);
+      expect(states(result)).toBe(molecules.map((m) => (m === fluoro ? "a" : "h")).join(""));
+      expect(saying(result, 1)).toMatch(
+        /^X38 hold: Another species .* is gone .*Its bond table does not show/,
+      );
+      expect(result.group?.seen).toBeUndefined();
+      expect(result.molecules).toHaveLength(1);
+    },
+  );
+
+  it("stand where none bears it out, and a later one that does is the same molecule", () => {
+    const first = withTable([stretched, stretched]);
+    // A shaken bond may be near enough for a remark.
+    expect(states(first)).not.toContain("h");
+    expect(first.messages.map(({ code }) => code)).toContain("S26");
+    const classifier = new FrameClassifier({ group: first.group });
+    expect(states(withTable([fluoro, stretched], classifier))).not.toContain("h");
+  });
+});
+
+describe("the molecules that are offered", () => {
+  it("are one where a charge is only left out", () => {
+    const difluoroethane = molecule("CC(F)F");
+    const frames = [1, 2, 3].map((k) => frameOf(difluoroethane, k, k === 1 ? { charge: 0 } : {}));
+    const table = {
+      bonds: Int32Array.from(difluoroethane.graph.bonds),
+      orders: null,
+      charges: null,
+      radicals: null,
+    };
+    expect(classify([{ ...frames[0]!, table }, frames[1]!, frames[2]!]).molecules).toHaveLength(1);
+    const charged = classify([frames[0]!, frames[1]!, { ...frames[2]!, charge: 1 }]);
+    expect(charged.molecules.map(({ charge, frames: n }) => [charge, n])).toEqual([
+      [0, 2],
+      [1, 1],
+    ]);
+  });
+
+  it("say in what they differ where formula and charge are the same", () => {
+    const [one, other] = [molecule("CC(F)F"), molecule("FCCF")];
+    const broken = { ...one, positions: one.positions.slice() };
+    const hydrogen = one.graph.elements.lastIndexOf(1);
+    broken.positions[3 * hydrogen]! += 4;
+    const { molecules } = classify(
+      [1, 2].map((k) => frameOf(one, k)).concat(frameOf(broken, 3), frameOf(other, 4)),
+    );
+    const words = molecules.map(({ difference }) => difference);
+    expect(words[0]).toBe("bonds as in frame 1");
+    expect(words[1]).toMatch(/^against frame 1, bond .*–H\d+ is gone/);
+    expect(words[2]).toContain("frame 1");
+    expect(new Set(words).size).toBe(3);
+  });
+
+  it("count dummy atoms in what they are called", () => {
+    const water = molecule("O");
+    const ghost: ClassifierFrame = {
+      ...frameOf(water, 3),
+      elements: Uint8Array.of(...water.graph.elements, 0),
+      isotopes: null,
+      positions: Float64Array.of(...water.positions, 5, 5, 5),
+    };
+    const { molecules } = classify([frameOf(water, 1), frameOf(water, 2), ghost]);
+    expect(molecules.map(({ formula }) => formula)).toEqual(["H2O", "H2O with 1 dummy atom"]);
+  });
+});
+
 describe("a second batch", () => {
   it("is compared with the group of the first, through JSON", () => {
     const [one, other] = [molecule("C[C@H](O)[C@@H](F)Cl"), molecule("C[C@H](O)[C@H](F)Cl")];

@@ -1,13 +1,13 @@
 import { perceiveChirality } from "../chem/chirality.ts";
 import { hillFormula } from "../chem/formula.ts";
-import { graphSignature } from "../chem/signature.ts";
 import type { Configuration } from "../chem/stereo.ts";
 import { type StatedOrders, statedOrders } from "../sdf/orders.ts";
 import { type Graph, makeGraph } from "../structure.ts";
 import { CopyFinder } from "./copies.ts";
-import { type BondKind, FrameKinds } from "./frame-kinds.ts";
+import { FrameKinds } from "./frame-kinds.ts";
 import type { ClassifierFrame, FrameRecord, FrameVerdict, MoleculeGroup } from "./frame-record.ts";
 import { FrameJudge } from "./judge.ts";
+import { moleculeKeys, moleculesOf } from "./molecules.ts";
 import { OrderMapper } from "./order-mapper.ts";
 import type { MoleculeChoice } from "./reading-questions.ts";
 import type { IntakeMessage } from "./report.ts";
@@ -142,8 +142,9 @@ export class FrameClassifier {
     const preferred = new Set(options.preferFrames);
     const usable = this.records.filter((record) => record.kind !== null);
     const picked = usable.find((record) => record.frame === options.like);
+    const keyOf = moleculeKeys(usable);
     const voters = picked
-      ? usable.filter((record) => moleculeKey(record) === moleculeKey(picked))
+      ? usable.filter((record) => keyOf(record) === keyOf(picked))
       : usable.filter((record) => preferred.has(record.frame));
     const group = this.given ?? chooseGroup(voters.length > 0 ? voters : usable);
     if (!group) return nothing(this.records);
@@ -157,7 +158,7 @@ export class FrameClassifier {
       shape: this.kinds.shapes.find((shape) => judge.hasOrder(shape))?.id ?? null,
       ...chirality(graph, group.configuration),
       messages: judge.overall(this.records[0]?.file ?? ""),
-      molecules: moleculesOf(usable),
+      molecules: moleculesOf(usable, keyOf),
       table: this.tableOf(graph),
     };
   }
@@ -170,42 +171,6 @@ export class FrameClassifier {
     }
     return null;
   }
-}
-
-/** So many molecules are told apart; more of them are no choice. */
-const MOST_MOLECULES = 200;
-
-/** Composition, charge and bonds, whatever the order of the atoms. */
-function moleculeKey({ shape, charge, kind }: FrameRecord): string {
-  if (!kind) return "";
-  let signature = signatures.get(kind);
-  if (signature === undefined) {
-    signature = graphSignature(kind.graph);
-    signatures.set(kind, signature);
-  }
-  return `${shape.composition} ${charge ?? ""} ${signature}`;
-}
-const signatures = new WeakMap<BondKind, string>();
-
-function moleculesOf(records: readonly FrameRecord[]): MoleculeChoice[] {
-  const kinds = new Set(records.map(({ kind }) => kind));
-  if (kinds.size < 2 || kinds.size > MOST_MOLECULES) return [];
-  const found = new Map<string, { record: FrameRecord; frames: number }>();
-  for (const record of records) {
-    const key = moleculeKey(record);
-    const known = found.get(key);
-    if (known) known.frames += 1;
-    else found.set(key, { record, frames: 1 });
-  }
-  return [...found.values()]
-    .sort((a, b) => b.frames - a.frames)
-    .map(({ record, frames }, k) => ({
-      frame: record.frame,
-      frames,
-      formula: hillFormula(record.shape.elements, record.shape.isotopes),
-      charge: record.charge,
-      proposed: k === 0,
-    }));
 }
 
 function sameElements(elements: Uint8Array, group: MoleculeGroup): boolean {

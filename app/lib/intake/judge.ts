@@ -1,5 +1,4 @@
 import { atomName, symbolOf } from "../chem/elements.ts";
-import { hillFormula } from "../chem/formula.ts";
 import type { StereoUnit } from "../chem/refine.ts";
 import { graphSignature, isomorphism } from "../chem/signature.ts";
 import { ConfigurationComparer, fromConfiguration } from "../chem/stereo.ts";
@@ -15,6 +14,7 @@ import {
   seenBonds,
 } from "./frame-kinds.ts";
 import type { FrameRecord, FrameVerdict, MoleculeGroup } from "./frame-record.ts";
+import { formulaWithDummies } from "./molecules.ts";
 import { type Finding, FrameRemarks } from "./remarks.ts";
 import type { IntakeMessage } from "./report.ts";
 import { agrees } from "./vote.ts";
@@ -107,11 +107,11 @@ export class FrameJudge {
   }
 
   private otherComposition({ elements, isotopes }: Shape): Finding {
-    const ensemble = withDummies(this.group.elements, this.group.isotopes);
+    const ensemble = formulaWithDummies(this.group.elements, this.group.isotopes);
     return {
       code: "X12",
       reason: "other-composition",
-      message: `Another composition: ${withDummies(elements, isotopes)}, where the ensemble is ${ensemble}.`,
+      message: `Another composition: ${formulaWithDummies(elements, isotopes)}, where the ensemble is ${ensemble}.`,
       hint: OWN_ENSEMBLE,
     };
   }
@@ -131,9 +131,16 @@ export class FrameJudge {
 
   /** The bonds of the file's table, where both have one, and what the distances show. */
   private hasBonds(kind: BondKind): boolean {
-    if (!this.hasOrder(kind.shape) || !this.looksAlike(kind)) return false;
+    if (!this.hasOrder(kind.shape)) return false;
+    // Distances that bear out the group's table need not look like frames whose distances do not.
+    if (kind.seen === null && this.hasGroupBonds(kind)) return true;
+    if (!this.looksAlike(kind)) return false;
     if (kind.table === null || kind.seen === null) return true;
-    return sameBonds(kind.graph.bonds, this.group.bonds, this.group.bonds.length / 2);
+    return this.hasGroupBonds(kind);
+  }
+
+  private hasGroupBonds({ graph }: BondKind): boolean {
+    return sameBonds(graph.bonds, this.group.bonds, this.group.bonds.length / 2);
   }
 
   private looksAlike(kind: BondKind): boolean {
@@ -182,7 +189,8 @@ export class FrameJudge {
     }
     const change = describeChange(this.graph, graph);
     if (Math.max(change.broken, change.formed) > 2) return "elements stand in the same places, bonds do not";
-    return `${change.words}, and equal atoms are exchanged`;
+    const exchanged = "equal atoms are exchanged";
+    return change.words === "" ? exchanged : `${change.words}, and ${exchanged}`;
   }
 
   private otherHands(hands: Hands): Finding | null {
@@ -278,12 +286,6 @@ function sameComposition({ elements, isotopes }: Shape, group: MoleculeGroup): b
       .sort((x, y) => x - y)
       .join();
   return sorted(elements, isotopes) === sorted(group.elements, group.isotopes);
-}
-
-function withDummies(elements: ArrayLike<number>, isotopes: ArrayLike<number>): string {
-  const dummies = Array.from(elements).filter((z) => z === 0).length;
-  const formula = hillFormula(elements, isotopes);
-  return dummies === 0 ? formula : `${formula} with ${dummies} dummy ${dummies > 1 ? "atoms" : "atom"}`;
 }
 
 function signed(charge: number): string {

@@ -12,6 +12,8 @@ export interface MoleculeChoice {
   readonly frames: number;
   readonly formula: string;
   readonly charge: number | null;
+  /** In what it differs from others of its formula and charge; null where these tell it apart. */
+  readonly difference: string | null;
   /** The one that most frames have. */
   readonly proposed: boolean;
 }
@@ -138,9 +140,9 @@ export function groupQuestion(molecules: readonly MoleculeChoice[], inSdf: boole
     text: "Which molecule is the ensemble?",
     reason:
       "The files hold several. The one with most frames was taken; the others are held until you choose.",
-    options: molecules.map(({ frame, frames, formula, charge, proposed }) => ({
+    options: molecules.map(({ frame, frames, formula, charge, difference, proposed }) => ({
       id: `frame:${frame}`,
-      text: `${formula}${charged(charge)}`,
+      text: `${formula}${charged(charge)}${difference === null ? "" : ` (${difference})`}`,
       detail: `${proposed ? "Proposed: taken now. " : ""}${plural(frames, "frame")}, the first is ${formatCount(frame)}.`,
       proposed,
     })),

@@ -18,7 +18,7 @@ export function chooseGroup(records: readonly FrameRecord[]): MoleculeGroup | nu
   const members = largestComposition(records);
   if (!members) return null;
   const ordered = largest(members.records, (record) => record.shape);
-  const bonded = largest(ordered, (record) => record.kind);
+  const bonded = largest(inTheTable(ordered), (record) => record.kind);
   const kind = bonded[0]?.kind;
   if (!kind) return null;
   return {
@@ -30,6 +30,29 @@ export function chooseGroup(records: readonly FrameRecord[]): MoleculeGroup | nu
     multiplicity: members.multiplicity,
     configuration: commonConfiguration(kind, bonded),
   };
+}
+
+/**
+ * Where files carry a bond table it is the reference, and the distances only check it: frames that bear out the table of
+ * most decide before those that do not. All frames where none does, or no file has one.
+ */
+function inTheTable(records: readonly FrameRecord[]): readonly FrameRecord[] {
+  const tables = new Map<string, FrameRecord[]>();
+  const keys = new Map<BondKind, string>();
+  for (const record of records) {
+    const { kind } = record;
+    if (kind === null || kind.table === null) continue;
+    const key = keys.get(kind) ?? kind.graph.bonds.join();
+    keys.set(kind, key);
+    const same = tables.get(key);
+    if (same) same.push(record);
+    else tables.set(key, [record]);
+  }
+  let most: FrameRecord[] = [];
+  for (const same of tables.values()) if (same.length > most.length) most = same;
+  const borneOut = most.filter(({ kind }) => kind?.seen === null);
+  // Frames without a table that are as many as these have as much to say.
+  return 2 * most.length > records.length && borneOut.length > 0 ? borneOut : records;
 }
 
 /** Frames of one kind: those of the most frequent one; of equally frequent ones, that met first. */

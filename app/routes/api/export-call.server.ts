@@ -40,7 +40,12 @@ export function exportCall(make: typeof exportSift, format: ExportFormat) {
       return new Response(
         streamOf(file.pieces, () => accessSift(actor, "read", siftId)),
         {
-          headers: { "content-type": file.type, "content-disposition": attachment(file.name) },
+          headers: {
+            "content-type": file.type,
+            "content-disposition": attachment(file.name),
+            // A CSV has no place for it of its own.
+            ...(file.notCurrent === null ? {} : { "x-not-current": file.notCurrent }),
+          },
         },
       );
     },

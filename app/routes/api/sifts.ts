@@ -18,7 +18,7 @@ const answer = answerCall({
     const sift = await createSift({ actor, ensembleId, request: asked });
     const base = url.pathname.startsWith("/files/") ? "/files" : "/api/v1";
     return json(
-      { ...sift, warnings: unusedOptions(asked) },
+      { ...sift, warnings: [...unusedOptions(asked), ...sift.warnings] },
       { status: 202, location: `${base}/sifts/${sift.id}` },
     );
   },

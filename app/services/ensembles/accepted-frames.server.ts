@@ -73,6 +73,35 @@ export async function acceptedSha(tx: Queryable, ensembleId: string): Promise<Bu
   return hash.update(await stateText(tx, ensembleId)).digest();
 }
 
+/** Molecule and coordinates in the order of their blocks, hashed on block by block. */
+async function geometryHash(on: Queryable, ensembleId: string) {
+  const molecule = await on
+    .select({ elements: ensembles.elements, bonds: ensembles.bonds })
+    .from(ensembles)
+    .where(eq(ensembles.id, ensembleId));
+  const blocks = await on
+    .select({ sha256: frameBlocks.sha256 })
+    .from(frameBlocks)
+    .where(and(eq(frameBlocks.ensembleId, ensembleId), eq(frameBlocks.shape, 0)))
+    .orderBy(asc(frameBlocks.first));
+  const hash = createHash("sha256").update("geometry 1\n");
+  for (const { elements, bonds } of molecule) hash.update(elements).update("\n").update(bonds).update("\n");
+  return { hash, blocks: blocks.map(({ sha256 }) => sha256 ?? Buffer.alloc(32)) };
+}
+
+/** The checksum of the molecule and of the coordinates of all its frames, held ones too: no decision on a frame moves it. */
+export async function geometrySha(on: Queryable, ensembleId: string): Promise<Buffer> {
+  const { hash, blocks } = await geometryHash(on, ensembleId);
+  for (const block of blocks) hash.update(block);
+  return hash.digest();
+}
+
+/** Whether the coordinates that a checksum was taken of are there still; further batches stand behind them. */
+export async function hasGeometry(on: Queryable, ensembleId: string, sha: Buffer): Promise<boolean> {
+  const { hash, blocks } = await geometryHash(on, ensembleId);
+  return blocks.some((block) => hash.update(block).copy().digest().equals(sha));
+}
+
 /** The checksum of what a sift runs on: the accepted frames and, with a level, its numbers and their unit. */
 export function siftInputSha(
   accepted: Buffer,

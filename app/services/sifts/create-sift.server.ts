@@ -4,18 +4,20 @@ import { inTransaction, type Queryable } from "../../db/client.server.ts";
 import { isDuplicate } from "../../db/driver-errors.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { columns, ensembles, sifts } from "../../db/schema.server.ts";
+import type { Warnings } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
 import type { SiftRecipe, SiftRequest } from "../../lib/recipe/recipe.ts";
 import { canonicalRecipe, resolveRecipe } from "../../lib/recipe/resolve.ts";
 import type { SiftStatus } from "../../lib/views.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
-import { siftInputSha } from "../ensembles/accepted-frames.server.ts";
+import { geometrySha, siftInputSha } from "../ensembles/accepted-frames.server.ts";
 import { notFound } from "../http.server.ts";
 import { siftJob } from "../jobs/definitions/sift.ts";
 import { enqueueJob } from "../jobs/enqueue-job.server.ts";
 import { wakeJobs } from "../jobs/run-jobs.server.ts";
 import { type Doer, writeEntry } from "../logbook/write-entry.server.ts";
 import { findSift, lastAsked } from "./find-sift.server.ts";
+import { siftWarnings } from "./standing.server.ts";
 
 export interface AskedSift {
   id: string;
@@ -130,6 +132,7 @@ async function insertOrFind(
     ensembleId: at.ensembleId,
     recipeSha,
     inputSha,
+    geometrySha: await geometrySha(tx, at.ensembleId),
     recipe,
     jobId,
     createdBy: at.userId,
@@ -165,12 +168,13 @@ export async function askForSift(
   return { id, status, progress };
 }
 
-/** Asks for a sift as a person or a token. */
+/** Asks for a sift as a person or a token; what is to be known of its energies comes with the answer. */
 export async function createSift(options: {
   actor: Actor;
   ensembleId: string;
   request: SiftRequest;
-}): Promise<AskedSift> {
+}): Promise<AskedSift & { warnings: Warnings }> {
   const grant = await accessEnsemble(options.actor, "compute", options.ensembleId);
-  return askForSift(grant, options.request);
+  const asked = await askForSift(grant, options.request);
+  return { ...asked, warnings: await siftWarnings(await findSift(asked.id), null) };
 }

@@ -1,4 +1,5 @@
 import { createHash } from "node:crypto";
+import { DomainError } from "../../lib/errors.ts";
 import { type Actor, accessSift } from "../auth/access.server.ts";
 import { type ExportFormat, openExport } from "./export-sift.server.ts";
 import { findSift } from "./find-sift.server.ts";
@@ -17,7 +18,7 @@ export interface ExportFacts {
  * Size and checksum of each file of a distinct set as it would be sent now.
  *
  * @param options.temperature K, for the populations that go along
- * @returns null for an unfinished sift, and for a set too large to be written for this alone
+ * @returns null for an unfinished sift, one whose data were read again since, and a set too large to be written for this alone
  */
 export async function describeExports(options: {
   actor: Actor;
@@ -29,7 +30,12 @@ export async function describeExports(options: {
   if (sift.status !== "done" || (sift.keptCount ?? Number.POSITIVE_INFINITY) > MOST_CONFORMERS) return null;
   const facts: ExportFacts[] = [];
   for (const format of FORMATS) {
-    const { pieces } = await openExport(grant, sift, format, options.temperature);
+    const file = await openExport(grant, sift, format, options.temperature).catch((error: unknown) => {
+      if (error instanceof DomainError && error.code === "conflict") return null;
+      throw error;
+    });
+    if (file === null) return null;
+    const { pieces } = file;
     const hash = createHash("sha256");
     let bytes = 0;
     for (const piece of pieces) {

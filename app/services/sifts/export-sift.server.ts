@@ -7,7 +7,7 @@ import type { ExportConformer, ExportSet } from "../../lib/export/export-set.ts"
 import { writeJson } from "../../lib/export/json.ts";
 import { writeSdf } from "../../lib/export/sdf-writer.ts";
 import { writeXyz } from "../../lib/export/xyz-writer.ts";
-import type { KeptConformer } from "../../lib/recipe/result.ts";
+import type { KeptConformer, SiftResult } from "../../lib/recipe/result.ts";
 import { distinctPopulations } from "../../lib/thermo/populations.ts";
 import { ENERGY_UNITS, STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
 import { type Actor, accessSift, type Grant } from "../auth/access.server.ts";
@@ -17,6 +17,7 @@ import { ordersOf, unpackMolecule } from "../ensembles/molecule.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { type FoundSift, findSift } from "./find-sift.server.ts";
 import { needResult } from "./populations.server.ts";
+import { siftWarnings } from "./standing.server.ts";
 
 export type ExportFormat = "xyz" | "sdf" | "csv" | "json";
 
@@ -31,6 +32,8 @@ export interface ExportFile {
   name: string;
   type: string;
   pieces: Iterable<string>;
+  /** Why the set is not that of the frames as they are; null where it is. */
+  notCurrent: string | null;
 }
 
 type ColumnRow = typeof columns.$inferSelect;
@@ -74,8 +77,15 @@ function populationsOf(
   return distinctPopulations(kept, level?.energyKind ?? "electronic", temperature);
 }
 
+/** Why the set is not that of the frames as they are, for the file itself. */
+async function notCurrentWords(sift: FoundSift, result: SiftResult): Promise<string> {
+  const warnings = await siftWarnings(sift, result);
+  return warnings.find(({ code }) => code === "not-current")?.message ?? "";
+}
+
 async function collect(grant: Grant & { ensembleId: string }, sift: FoundSift, temperature: number) {
-  const { kept } = await needResult(sift);
+  const result = await needResult(sift);
+  const { kept } = result;
   const { ensemble } = await findEnsembleRow(grant.teamId, grant.ensembleId);
   const all = await db
     .select()
@@ -110,6 +120,7 @@ async function collect(grant: Grant & { ensembleId: string }, sift: FoundSift, t
     temperature,
     weights: weighed?.weights.kind ?? null,
     conformers,
+    ...(sift.current ? {} : { notCurrent: await notCurrentWords(sift, result) }),
   };
   const indices = kept.map(({ frame }) => facts.get(frame)?.index ?? -1);
   return { set, ensemble, columns: all, indices };
@@ -167,14 +178,15 @@ export async function openExport(
   const found = await collect(grant, sift, temperature);
   const { ensemble } = found;
   const pieces = await piecesOf(found, format);
-  return { name: `${ensemble.name} distinct set.${format}`, type: TYPES[format], pieces };
+  const name = `${ensemble.name} distinct set.${format}`;
+  return { name, type: TYPES[format], pieces, notCurrent: found.set.notCurrent ?? null };
 }
 
 /**
  * The distinct set of a sift as a file; members' exports stand in the logbook.
  *
  * @param options.temperature K, for the populations that go along
- * @throws DomainError conflict while the sift is not done
+ * @throws DomainError conflict while the sift is not done, and where its energies or structures were read again or replaced
  */
 export async function exportSift(options: {
   actor: Actor;

@@ -21,6 +21,8 @@ export interface FoundSift {
   keptCount: number | null;
   summary: { shares: number[]; lowest: number | null; effectiveCount: number | null } | null;
   createdAt: Date;
+  /** Of the molecule and its coordinates then; null on sifts of older versions. */
+  geometrySha: Buffer | null;
   /** False where frames were held, released or read again, or the level's numbers replaced, since. */
   current: boolean;
 }
@@ -36,6 +38,7 @@ const fields = {
   keptCount: sifts.keptCount,
   summary: sifts.summary,
   inputSha: sifts.inputSha,
+  geometrySha: sifts.geometrySha,
   createdAt: sifts.createdAt,
   acceptedSha: ensembles.acceptedSha,
 };

@@ -1,7 +1,9 @@
+import type { Warnings } from "../../lib/api/schemas.ts";
 import type { SiftView } from "../../lib/views.ts";
 import { type Actor, accessSift } from "../auth/access.server.ts";
 import { waitForJob } from "../jobs/wait-for-job.server.ts";
 import { findSift, toSiftView } from "./find-sift.server.ts";
+import { siftWarnings } from "./standing.server.ts";
 
 /**
  * One sift, after waiting for its end where asked to.
@@ -15,7 +17,7 @@ export async function getSift(options: {
   waitSeconds?: number;
   stateOnly?: boolean;
   signal?: AbortSignal;
-}): Promise<SiftView & { ensemble: string }> {
+}): Promise<SiftView & { ensemble: string; warnings: Warnings }> {
   const grant = await accessSift(options.actor, "read", options.siftId);
   let sift = await findSift(grant.siftId);
   const wait = options.waitSeconds ?? 0;
@@ -26,5 +28,7 @@ export async function getSift(options: {
     sift = await findSift(grant.siftId);
   }
   const view = await toSiftView(sift, { stateOnly: options.stateOnly ?? false });
-  return { ...view, ensemble: grant.ensembleId };
+  // While it is followed nobody reads them, and they ask for all energies.
+  const warnings = options.stateOnly ? [] : await siftWarnings(sift, view.result);
+  return { ...view, ensemble: grant.ensembleId, warnings };
 }

@@ -1,3 +1,4 @@
+import { db } from "../../db/client.server.ts";
 import type { PopulationsAnswer } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
 import type { KeptConformer, SiftResult } from "../../lib/recipe/result.ts";
@@ -8,12 +9,17 @@ import type { LevelView } from "../../lib/views.ts";
 import { type Actor, accessSift } from "../auth/access.server.ts";
 import { frameStrip } from "../ensembles/accepted-frames.server.ts";
 import { findColumns, loadColumn, pickLevel, toLevels } from "../ensembles/find-columns.server.ts";
+import { levelWarnings } from "../ensembles/judge-spread.server.ts";
 import { type FoundSift, findSift, readResult } from "./find-sift.server.ts";
+import { checkStands, siftWarnings } from "./standing.server.ts";
 
-/** The result of a sift that is done; 409 for one that is not. */
+/** The result of a sift that is done; 409 for one that is not, and where energies or structures were read again since. */
 export async function needResult(sift: FoundSift): Promise<SiftResult> {
   const result = sift.status === "done" ? await readResult(sift.id) : null;
-  if (result !== null) return result;
+  if (result !== null) {
+    await checkStands(sift, result.kept);
+    return result;
+  }
   const why = {
     queued: "It waits for its turn. Ask again with wait=30 at the sift itself.",
     running: "It is still being computed. Ask again with wait=30 at the sift itself.",
@@ -41,9 +47,10 @@ export function levelOf(sift: FoundSift, levels: LevelView[], asked: string | un
   if (asked !== undefined) return pickLevel(levels, asked);
   const own = levels.find((level) => level.id === sift.recipe.level);
   if (own) return own;
-  throw invalid(
-    "level",
-    `The level "${sift.recipe.levelName}" of this sift is no more: the files were read again with other answers. Sift again.`,
+  throw new DomainError(
+    "conflict",
+    "The level is no more",
+    `The level "${sift.recipe.levelName}" of this sift was removed, or its files were read again under another name. Sift again.`,
   );
 }
 
@@ -76,7 +83,8 @@ export async function energiesAt(
 /**
  * Populations and conformational thermodynamics of a distinct set.
  *
- * @throws DomainError conflict while the sift is not done; invalid for an unknown level and for a sift without energies
+ * @throws DomainError conflict while the sift is not done, and where its energies or structures were read again or replaced
+ *   since; invalid for an unknown level and for a sift without energies
  */
 export async function loadPopulations(options: {
   actor: Actor;
@@ -97,6 +105,8 @@ export async function loadPopulations(options: {
     throw invalid("level", `No conformer of this distinct set has an energy at "${level.name}".`);
   }
   const warning = temperatureWarning(level, temperature);
+  const known = await siftWarnings(sift, result);
+  if (level.id !== sift.recipe.level) known.push(...(await levelWarnings(db, grant.ensembleId, level.id)));
   return {
     temperature,
     level: level.id,
@@ -115,6 +125,6 @@ export async function loadPopulations(options: {
     entropy: weighed.entropy,
     heatCapacity: weighed.heatCapacity,
     effectiveCount: weighed.effectiveCount,
-    warnings: warning === null ? [] : [{ code: "E13", message: warning }],
+    warnings: [...(warning === null ? [] : [{ code: "E13", message: warning }]), ...known],
   };
 }
