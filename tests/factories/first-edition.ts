@@ -48,6 +48,7 @@ export async function freezeFirst(at: { ensembleId: string; siftId: string }, te
     level: level ? contentLevel(level) : null,
     contentVersion: 1,
     moment: [],
+    outside: [],
   });
   const content = buildContent(source, null);
   const packed: PackedFile[] = [];

@@ -314,6 +314,14 @@ describe("a structure from outside", () => {
       expect(types).toContain(type);
   });
 
+  it("stands in the methods text of Hand-over", async () => {
+    const html = (await (await asAnalyst(`/ensembles/${ensembleId}/hand-over`)).text()).replaceAll(
+      "<!-- -->",
+      "",
+    );
+    for (const { name } of await list()) expect(html).toContain(`The outside structure ${name} (SHA-256 `);
+  });
+
   it("is seen by readers, who add none", async () => {
     const reader = await makeMember(lab.team.id, "reader");
     expect((await asAnalyst(`/ensembles/${ensembleId}/compare`, { cookie: reader.cookie })).status).toBe(200);

@@ -2,6 +2,7 @@ import type { PropertyValues } from "../averages/property-set.ts";
 import { RULE_WORDS } from "../averages/rule.ts";
 import { CAUTION } from "../export/json.ts";
 import { formatCount, formatEnergy, plural, withUnit } from "../format.ts";
+import { type OutsideMethod, outsideMethods } from "../outside/methods-text.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { distinctPopulations } from "../thermo/populations.ts";
@@ -52,6 +53,8 @@ export interface EditionSource {
   temperatures: readonly number[];
   /** Open at that moment, known from the state of the ensemble alone. */
   moment: readonly OpenItem[];
+  /** Structures from outside that lie beside the ensemble. */
+  outside: readonly OutsideMethod[];
 }
 
 /** What is to be drawn for an edition; null where there are no populations or no error. */
@@ -115,6 +118,7 @@ export function buildContent(source: EditionSource, drawn: DrawnUncertainty | nu
     ),
     comparisons: comparisonSections(source.columns, source.recipe.levelName, populations),
     sampling: samplingSection(result.kept),
+    ...(source.outside.length > 0 ? { outside: [...source.outside] } : {}),
     uncertainty: uncertaintySection(drawn, source.sigmaFrom),
     temperatures: first
       ? null
@@ -215,7 +219,7 @@ function methodsOf(facts: Omit<EditionContent, "words" | "findings" | "open">, v
 function furtherSentences(
   facts: Pick<
     EditionContent,
-    "averages" | "columns" | "comparisons" | "kept" | "level" | "uncertainty" | "temperatures"
+    "averages" | "columns" | "comparisons" | "kept" | "level" | "uncertainty" | "temperatures" | "outside"
   >,
 ) {
   const { comparisons, level, uncertainty } = facts;
@@ -236,5 +240,6 @@ function furtherSentences(
         `${withUnit(formatEnergy(uncertainty.sigma), "kcal/mol")} each` +
         `${uncertainty.sigmaFrom === null ? "" : ` (the deviation from ${uncertainty.sigmaFrom})`}, ` +
         `in antithetic pairs (JCGM 101:2008; generator ${uncertainty.generator}, seed ${uncertainty.seed}).`,
+    ...(facts.outside ?? []).map(outsideMethods),
   ].filter((sentence) => sentence !== null);
 }

@@ -145,6 +145,17 @@ export const editionFindingSchema = z.object({
 });
 export type EditionFinding = z.infer<typeof editionFindingSchema>;
 
+/** How a structure from outside was compared: for the methods text; it takes no part in any result. */
+const outsideSchema = z.object({
+  name: z.string(),
+  sha256,
+  set: z.enum(["heavy", "heavy+polarH", "all"]),
+  atoms: z.number().int(),
+  conformers: z.number().int(),
+  mirror: z.boolean(),
+  strainLevel: z.string().nullable(),
+});
+
 export const editionContentSchema = z.object({
   schema: z.literal("lowlying-edition"),
   /** 1 has no uncertainty, no further temperatures and no list of what was open. */
@@ -215,6 +226,8 @@ export const editionContentSchema = z.object({
   averages: z.array(averageSchema).nullable().default(null),
   comparisons: z.array(comparisonSchema).default([]),
   sampling: samplingSchema.nullable().default(null),
+  /** Absent where none lies beside the ensemble. */
+  outside: z.array(outsideSchema).optional(),
   uncertainty: uncertaintySchema.nullable().default(null),
   temperatures: temperaturesSchema.nullable().default(null),
   open: z.array(openItemSchema).default([]),

@@ -210,6 +210,7 @@ export async function editionSource(options: {
   version: string;
   contentVersion: 1 | 2;
   moment: readonly OpenItem[];
+  outside: EditionSource["outside"];
 }): Promise<EditionSource> {
   const { ensemble, described, recipe, result, level, columns: all, frames: collected } = options;
   const own = level && all.find(({ kind, name }) => kind === "energy" && name === level.name);
@@ -244,6 +245,7 @@ export async function editionSource(options: {
     seed: recipe.seed,
     temperatures: recipe.temperatures,
     moment: options.moment,
+    outside: options.outside,
   };
 }
 

@@ -27,6 +27,7 @@ import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
 import { notFound } from "../http.server.ts";
 import { type Doer, writeEntry } from "../logbook/write-entry.server.ts";
+import { outsideMethodsOf } from "../outside/outside-methods.server.ts";
 import { type FoundSift, findSift } from "../sifts/find-sift.server.ts";
 import { needResult } from "../sifts/populations.server.ts";
 import { drawContent } from "./draw-uncertainty.server.ts";
@@ -192,6 +193,7 @@ async function prepare(at: At, request: FreezeRequest): Promise<Prepared> {
     version: productVersion(EDITION_CODE_VERSION),
     contentVersion: 2,
     moment: await momentItems(sift),
+    outside: await outsideMethodsOf(ensemble, sift, result),
   });
   const content = await drawContent(source);
   const energies = frameEnergies(level, ensemble.frames, framesOf(result));

@@ -25,7 +25,7 @@ import { type JobRun, JobStopped } from "../jobs/job-run.ts";
 import { computeSift } from "../jobs/pool.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { drawContent } from "./draw-uncertainty.server.ts";
-import { packFile, readWholeFile } from "./edition-files.server.ts";
+import { type PackedFile, packFile, readWholeFile } from "./edition-files.server.ts";
 import {
   type CollectedFrames,
   collectFrames,
@@ -248,13 +248,39 @@ async function compareFiles(
   positions: Float64Array,
   energies: readonly FrameEnergy[],
 ): Promise<VerifiedFile[]> {
-  const made = [];
-  for (const file of editionFiles(content, positions, energies)) made.push(await packFile(file, false));
+  const fresh = [];
+  for (const file of editionFiles(content, positions, energies)) fresh.push(await packFile(file, false));
+  const { made, notes } = settleFigures(edition, fresh);
   const told = toldOf(edition, content, made.find(({ name }) => name === "results.json")?.sha256 ?? "");
   for (const file of citationFiles(told)) made.push(await packFile(file, false));
   made.push(await packFile(manifestFile(told, made), false));
   const shas = new Map(made.map(({ name, sha256 }) => [name, sha256]));
-  return edition.files.map(({ name, sha256 }) => ({ name, was: sha256, is: shas.get(name) ?? null }));
+  return [
+    ...edition.files
+      .filter(({ name }) => notes.every((note) => note.name !== name))
+      .map(({ name, sha256 }) => ({ name, was: sha256, is: shas.get(name) ?? null })),
+    ...notes,
+  ];
+}
+
+/**
+ * Figures that this version draws otherwise: where the content that they are drawn from agrees to the byte, that is said of
+ * them and counts as no difference, in them or in the manifest that lists them.
+ */
+function settleFigures(edition: FoundEdition, fresh: PackedFile[]) {
+  const frozen = new Map(edition.files.map((file) => [file.name, file]));
+  const results = fresh.find(({ name }) => name === "results.json");
+  const agrees = results !== undefined && results.sha256 === frozen.get("results.json")?.sha256;
+  const notes: VerifiedFile[] = [];
+  const made = fresh.map((file) => {
+    const was = frozen.get(file.name);
+    if (!agrees || !file.name.endsWith(".svg") || was === undefined || was.sha256 === file.sha256)
+      return file;
+    const note = "This version draws the figure otherwise; what it is drawn from agrees, byte for byte.";
+    notes.push({ name: file.name, was: was.sha256, is: file.sha256, note });
+    return { ...file, bytes: was.bytes, sha256: was.sha256 };
+  });
+  return { made, notes };
 }
 
 function toldOf(edition: FoundEdition, content: EditionContent, contentSha256: string): ManifestInput {
@@ -304,6 +330,8 @@ async function recompute(frozen: Frozen, run: JobRun): Promise<VerifiedFile[]> {
     level: edition.content.level,
     version: edition.version,
     contentVersion: edition.content.version,
+    // What lies beside an ensemble is no result: it stands as it was said then.
+    outside: edition.content.outside ?? [],
     moment: edition.content.open.filter(({ code }) => MOMENT_CODES.some((one) => one === code)),
   });
   const content = settleWords(await drawContent(source), edition.content);
