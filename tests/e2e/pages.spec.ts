@@ -164,6 +164,7 @@ test.describe("narrow and enlarged", () => {
       team ?? "/teams",
       "/methods",
       "/formats",
+      "/words",
       ...sections.map((one) => `${address}/${one}`),
     ]) {
       await page.goto(path);

@@ -1,5 +1,5 @@
-import { type Browser, type BrowserContext, type Page, expect as plainExpect } from "@playwright/test";
-import { expect, expectAccessible, hydrated, signIn, signUp, test } from "./base";
+import type { Browser, BrowserContext, Page } from "@playwright/test";
+import { expect, expectAccessible, hydrated, letterLink, signIn, signUp, test } from "./base";
 
 // A wrong password is among what is tried.
 test.use({ allowRefusals: true });
@@ -8,21 +8,6 @@ test.use({ allowRefusals: true });
 async function newOwner(page: Page, name: string, email: string): Promise<string> {
   await signUp(page, name, email);
   return page.url();
-}
-
-/** The link in the newest letter to an address, as the page of kept letters shows it. */
-async function linkTo(page: Page, email: string, path: string): Promise<string> {
-  let found: string | null = null;
-  await plainExpect(async () => {
-    await page.goto("/mail");
-    const letter = page
-      .getByRole("article")
-      .filter({ hasText: email })
-      .filter({ hasText: `/${path}/` })
-      .first();
-    found = await letter.getByRole("link").first().getAttribute("href", { timeout: 1000 });
-  }).toPass();
-  return found ?? "";
 }
 
 async function otherBrowser(browser: Browser, baseURL: string | undefined): Promise<[BrowserContext, Page]> {
@@ -49,7 +34,7 @@ test("an owner invites by mail; the newcomer joins once, and a new role counts a
   await expectAccessible(page);
 
   const [context, second] = await otherBrowser(browser, baseURL);
-  const link = await linkTo(second, guest, "invitation");
+  const link = await letterLink(second, guest, "invitation");
   await second.goto(link);
   await expectAccessible(second);
   await second.getByLabel("Name, as the logbook shows it").fill("Bo Ferrant");
@@ -113,7 +98,7 @@ test("an account shows its sessions, changes its password and its address", asyn
   await page.getByLabel("Password", { exact: true }).first().fill("eight wet stones shine");
   await page.getByRole("button", { name: "Change the address" }).click();
   await expect(page.getByText("A letter goes to the new address.")).toBeVisible();
-  await page.goto(await linkTo(page, next, "confirm-address"));
+  await page.goto(await letterLink(page, next, "confirm-address"));
   await page.getByRole("button", { name: "Use this address" }).click();
   await expect(page.getByText(`The address ${next} is confirmed.`)).toBeVisible();
   await context.close();
