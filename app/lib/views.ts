@@ -58,6 +58,8 @@ export interface EnsembleView {
   levels: LevelView[];
   /** Property columns: what can be averaged. */
   properties: number;
+  /** Names, with their units, of properties that are probably energies and would serve as levels. */
+  maybeLevels: string[];
   /** Torsions that were made columns, atoms from 0: they label the shape of a conformer. */
   torsions: { id: string; name: string; atoms: number[] }[];
   files: FileView[];

@@ -32,10 +32,19 @@ const send = (cookie: string, form: Record<string, string>) =>
 describe("reading again from the page of intake", () => {
   it("puts a wrong unit and level right", async () => {
     const form = { level: "Second", energyUnit: "hartree", energyFrom: "key:energy", energyKind: "free" };
-    expect((await send(analyst.cookie, { ...form, energyTemperature: "298.15" })).status).toBe(200);
+    // As a person types it: with a decimal comma and the unit.
+    expect((await send(analyst.cookie, { ...form, energyTemperature: "298,15 K" })).status).toBe(200);
     expect(await levels()).toMatchObject([{ name: "Second", unit: "hartree" }]);
+    const { inForce } = await loadIntake({ actor: personOf(analyst.id), ensembleId: id });
+    expect(inForce).toEqual([
+      {
+        ...{ level: "Second", from: "key:energy", unit: "hartree" },
+        ...{ kind: "free", kindStated: true, temperature: 298.15 },
+      },
+    ]);
     // The form starts from what is in force, the number too.
     const page = await (await call(`/ensembles/${id}/intake`, { cookie: analyst.cookie })).text();
+    expect(page).toContain("How the files are read");
     expect(page).toMatch(/<input[^>]*name="energyFrom"[^>]*value="key:energy"/);
   });
 

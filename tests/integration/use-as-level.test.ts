@@ -9,6 +9,7 @@ import type { Actor } from "~/services/auth/access.server";
 import { deriveColumn } from "~/services/columns/derive-column.server";
 import { loadColumns } from "~/services/columns/load-columns.server";
 import { columnSpan, makeLevel, makeProperty } from "~/services/columns/make-level.server";
+import { loadEnsemble } from "~/services/ensembles/load-ensemble.server";
 import { loadLogbook } from "~/services/logbook/load-logbook.server";
 import { BUTANE, formOf, frame, makeLab, takenIn } from "../factories/upload";
 import { call } from "../setup/app";
@@ -66,6 +67,8 @@ describe("a second energy of the files", () => {
       count: 3,
     });
     expect((await comparison(id)).status).toBe(422);
+    // Sections that need levels offer it by its name.
+    expect((await loadEnsemble({ actor, ensembleId: id })).maybeLevels).toContain("E_mp2");
     const stated = { name: "MP2", unit: "hartree", geometryLevel: "MMFF94", solvent: "water" } as const;
     await makeLevel({ actor, ensembleId: id, columnId, stated });
     expect(await named(id, "MP2")).toMatchObject({
@@ -84,6 +87,7 @@ describe("a second energy of the files", () => {
     const kcal = (HARTREE_J * PARTICLES_PER_MOL) / 1000 / JOULE_PER_CALORIE;
     expect(body.n).toBe(3);
     expect(body.max).toBeCloseTo(1 + kcal / 1000, 9);
+    expect((await loadEnsemble({ actor, ensembleId: id })).maybeLevels).not.toContain("MP2");
     const log = JSON.stringify(await loadLogbook({ actor, ensembleId: id }));
     expect(log).toContain("used as: level (before: property); name: MP2 (before: E_mp2); unit: hartree");
   });

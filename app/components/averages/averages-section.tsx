@@ -1,5 +1,6 @@
 import { useMemo } from "react";
 import { href, useLocation } from "react-router";
+import { MaybeLevels } from "~/components/columns/maybe-levels";
 import { ButtonLink } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
@@ -133,6 +134,7 @@ function Filled({
           ? ` ${plural(weighed.without, "conformer has", "conformers have")} no energy at ${weighed.level.name} and ${weighed.without === 1 ? "takes" : "take"} no part.`
           : ""}
       </p>
+      <MaybeLevels className="mt-2 max-w-[46rem] text-xs text-ink-2" />
       <PropertyTable
         averaged={averaged}
         counters={view.counters}

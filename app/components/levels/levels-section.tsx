@@ -1,6 +1,7 @@
 import { useDeferredValue, useMemo } from "react";
 import { href, useLocation } from "react-router";
 import type { Choose } from "~/components/charts/plot";
+import { MaybeLevels } from "~/components/columns/maybe-levels";
 import { ButtonLink } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
@@ -69,6 +70,7 @@ function TooFew({ levels }: { levels: readonly LevelData[] }) {
           level there too.
           {only ? " A plan can already be drafted with an error typed in for the next level." : ""}
         </p>
+        <MaybeLevels className="mt-2" />
       </StatePanel>
     </>
   );
@@ -106,6 +108,7 @@ function Compared({ levels }: { levels: readonly LevelData[] }) {
       <p className="mt-3 max-w-[46rem] text-xs text-ink-3">
         {weightsReason} {temperatureWords([level, reference], temperatureK)}
       </p>
+      <MaybeLevels className="mt-2 max-w-[46rem] text-xs text-ink-2" />
       <Figures found={found} />
       {levels.length > 2 ? <LevelMatrix levels={levels} members={members} /> : null}
     </>

@@ -103,6 +103,7 @@ const ensemble: EnsembleView = {
   held: 3,
   openQuestions: 0,
   properties: 0,
+  maybeLevels: [],
   torsions: [],
   chirality: "achiral",
   chiralityNote: "",

@@ -4,6 +4,7 @@ import type { ActAnswer } from "~/components/workbench/act-answer";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { DomainError } from "~/lib/errors";
+import { readTyped } from "~/lib/format";
 import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { changeColumn, columnChangeSchema } from "~/services/columns/change-column.server";
@@ -59,7 +60,9 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
         ...has("energyKind"),
         ...has("geometryLevel"),
         ...has("solvent"),
-        ...(form.has("temperature") ? { temperature: kelvin === "" ? null : Number(kelvin) } : {}),
+        ...(form.has("temperature")
+          ? { temperature: kelvin === "" ? null : (readTyped(kelvin, "K") ?? Number.NaN) }
+          : {}),
       });
       if (!change.success) return refused(change.error.issues[0]?.message ?? "Look at the fields again.");
       await changeColumn({ ...at, change: change.data });
@@ -73,7 +76,7 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
         name: text("name"),
         unit: text("unit"),
         energyKind: text("energyKind"),
-        temperature: kelvin === "" ? null : Number(kelvin),
+        temperature: kelvin === "" ? null : (readTyped(kelvin, "K") ?? Number.NaN),
         geometryLevel: text("geometryLevel"),
         solvent: text("solvent"),
       });

@@ -4,6 +4,7 @@ import { IntakeSection } from "~/components/workbench/intake-section";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { rereadRequestSchema, uploadFieldsSchema } from "~/lib/api/schemas";
+import { readTyped } from "~/lib/format";
 import type { IntakeView } from "~/lib/views";
 import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
@@ -69,7 +70,11 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
       return { ok: true, done: { intent, made } } satisfies ActAnswer;
     }
     case "reread": {
-      const typed = REREAD_FIELDS.map((name) => [name, text(name)] as const);
+      const kelvin = readTyped(text("energyTemperature"), "K");
+      const typed = REREAD_FIELDS.map(
+        (name) =>
+          [name, name === "energyTemperature" && kelvin !== null ? String(kelvin) : text(name)] as const,
+      );
       const asked = rereadFormSchema.safeParse(Object.fromEntries(typed.filter(([, value]) => value !== "")));
       if (!asked.success) return refused(asked.error.issues.map(({ message }) => message).join(" "));
       await rereadEnsemble({ actor, ensembleId, ...rereadAnswers(asked.data) });

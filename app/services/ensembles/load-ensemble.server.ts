@@ -1,6 +1,7 @@
 import { and, asc, eq, isNull } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { ensembleFiles, ensembles, series, sources, teams } from "../../db/schema.server.ts";
+import { looksLikeLevel } from "../../lib/columns-view.ts";
 import type { Graph } from "../../lib/structure.ts";
 import type { EnsembleView, FileView } from "../../lib/views.ts";
 import { type Actor, accessEnsemble, roleMay } from "../auth/access.server.ts";
@@ -91,6 +92,11 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
     bondTable: statedTable(ensemble.bondTable, graph),
     levels: toLevels(columns),
     properties: columns.filter((column) => column.kind === "property" && !column.counter).length,
+    maybeLevels: columns
+      .filter(
+        (column) => !column.counter && looksLikeLevel({ ...column, computed: column.definition !== null }),
+      )
+      .map(({ name, unit }) => (unit === null ? name : `${name} [${unit}]`)),
     torsions: columns.flatMap(({ id, name, definition }) => {
       const atoms =
         definition?.type === "observable" && definition.observable === "torsion" && definition.atoms[0];
