@@ -21,7 +21,7 @@ export function EditionDownloads({
   return (
     <section className="min-w-0" aria-labelledby="edition-files">
       <EditionHead id="edition-files">Files of this edition</EditionHead>
-      <ul className="mt-3 border-t border-rule">
+      <ul className="files mt-3 border-t border-rule">
         {others.map(({ name, bytes, sha256 }) => (
           <Line key={name} name={name} to={addresses.file(name)} bytes={bytes} sha256={sha256} />
         ))}

@@ -21,7 +21,7 @@ export function TemperatureTable({ edition }: { edition: EditionView }) {
   const { temperatures, temperature } = edition;
   if (temperatures === null || temperatures.kelvin.length < 2) return null;
   const groups = [
-    { title: "Populations", lines: populationLines(edition, temperatures) },
+    { title: "Populations, %", lines: populationLines(edition, temperatures) },
     { title: "Ensemble", lines: ensembleLines(temperatures) },
     { title: "Averages", lines: averageLines(edition, temperatures) },
   ].filter(({ lines }) => lines.length > 0);
@@ -97,7 +97,7 @@ function populationLines({ rows }: EditionView, { populations }: Temperatures): 
     .map(({ name, index }) => ({
       key: name,
       name,
-      unit: "%",
+      unit: "",
       values: populations.map((shares) => formatPopulation(shares[index] ?? null)),
     }));
 }

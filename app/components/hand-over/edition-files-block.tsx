@@ -6,6 +6,9 @@ import { FILE_WORDS } from "~/lib/edition/edition-files";
 import type { EditionRow } from "~/lib/edition/views";
 import { formatBytes } from "~/lib/format";
 
+/** Figures come together, as a zip. */
+const notFigure = ({ name }: { name: string }) => !name.endsWith(".svg");
+
 /** The files of the newest edition with size and checksum; a tick where the last recomputation gave the same bytes. */
 export function EditionFilesBlock({ ensembleId, edition }: { ensembleId: string; edition: EditionRow }) {
   const number = String(edition.number);
@@ -19,7 +22,7 @@ export function EditionFilesBlock({ ensembleId, edition }: { ensembleId: string;
         </a>
       </BlockHead>
       <ul className="border-t border-rule">
-        {edition.files.map(({ name, bytes, sha256 }) => (
+        {edition.files.filter(notFigure).map(({ name, bytes, sha256 }) => (
           <li
             key={name}
             className="figures grid grid-cols-[minmax(0,1fr)_4.5rem_1rem] items-center gap-x-3 border-b border-rule py-2 sm:grid-cols-[minmax(0,1fr)_4.5rem_9rem_1rem]"

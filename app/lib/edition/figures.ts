@@ -1,7 +1,7 @@
-import { depthStep, formatPercent, formatTemperature, trimmed } from "../format.ts";
+import { depthStep, formatCount, formatPercent, formatTemperature, trimmed } from "../format.ts";
 import { byPopulation } from "../workbench/conformers.ts";
 import { cumulativePopulation } from "../workbench/cumulative.ts";
-import { energyLadder } from "../workbench/ladder.ts";
+import { energyLadder, mergeLabels } from "../workbench/ladder.ts";
 import { roundTicks, tickDigits } from "../workbench/ticks.ts";
 import type { EditionContent } from "./content.ts";
 import { editionRows } from "./rows.ts";
@@ -16,8 +16,8 @@ export interface EditionFigure {
 }
 
 const WIDTH = 560;
-const HEIGHT = 380;
-const PLOT = { left: 64, right: 536, top: 56, bottom: 328 };
+const HEIGHT = 404;
+const PLOT = { left: 64, right: 536, top: 80, bottom: 352 };
 /** Conformers of a figure that has a line or a bar for each. */
 const MOST = 10;
 
@@ -65,6 +65,14 @@ function axes(drawing: Drawing, x: Axis, y: Axis) {
   return { toX, toY };
 }
 
+/** Names to the right of what they name; those that would run into each other stand together. */
+function labels(drawing: Drawing, marks: readonly { name: string; x: number; y: number }[]): void {
+  for (const { names, x, y } of mergeLabels(marks)) {
+    const shown = names.length > 3 ? `${names[0]} and ${names.length - 1} more` : names.join(", ");
+    drawing.text(x + 6, y + 4, shown, { fill: INK.ink });
+  }
+}
+
 const at = (content: EditionContent) =>
   content.populations === null ? "" : ` at ${formatTemperature(content.populations.temperature)} K`;
 
@@ -83,23 +91,15 @@ function ladderFigure(content: EditionContent) {
     { title: "population, %", low: 0, high: widest },
     { title: "relative energy, kcal/mol", low: -0.035 * ladder.top, high: ladder.top },
   );
-  const named: number[] = [];
+  const marks = [];
   for (const { energy, population, name } of ladder.rungs) {
     const y = toY(energy);
-    drawing.rect(
-      PLOT.left,
-      y - 3,
-      Math.max(1, toX(100 * population) - PLOT.left),
-      6,
-      DEPTH[depthStep(population) - 1]!,
-    );
+    const width = Math.max(1, toX(100 * population) - PLOT.left);
+    drawing.rect(PLOT.left, y - 3, width, 6, DEPTH[depthStep(population) - 1]!);
     drawing.rect(toX(100 * population) - 1.5, y - 3, 1.5, 6, INK.ink);
-    // A name where there is room for it.
-    if (population >= 0.02 && named.every((other) => Math.abs(other - y) > 13)) {
-      named.push(y);
-      drawing.text(toX(100 * population) + 6, y + 4, name, { fill: INK.ink });
-    }
+    if (population >= 0.02) marks.push({ name, x: toX(100 * population), y });
   }
+  labels(drawing, marks);
   return { name: "energy-ladder", title, svg: drawing.toString() };
 }
 
@@ -133,14 +133,11 @@ function rangesFigure(content: EditionContent) {
   const ranked = byPopulation(editionRows(content)).slice(0, MOST);
   if (uncertainty === null || populations === null || ranked.length < 2) return null;
   const title = "Populations and how far the error of the level moves them";
-  const height = 132 + 26 * ranked.length;
-  const drawing = new Drawing(
-    WIDTH,
-    height,
-    title,
-    `${content.ensemble.name}${at(content)}, ± ${trimmed(uncertainty.sigma, 2)} kcal/mol, 95 % of ${uncertainty.draws} draws`,
-  );
+  const height = 148 + 26 * ranked.length;
+  const drawing = new Drawing(WIDTH, height, title, `${content.ensemble.name}${at(content)}`);
   const right = 440;
+  const drawnWith = `line: 95 % of ${formatCount(uncertainty.draws)} draws, ± ${trimmed(uncertainty.sigma, 2)} kcal/mol each`;
+  drawing.text(16, height - 10, drawnWith, {});
   const high = Math.max(...ranked.map((row) => uncertainty.populations[row.index]?.high ?? 0), 0.05) * 1.04;
   const toX = (share: number) => PLOT.left + (share / high) * (right - PLOT.left);
   const bottom = 84 + 26 * ranked.length;
@@ -180,17 +177,15 @@ function temperatureFigure(content: EditionContent) {
     { title: "temperature, K", low, high: high + 0.08 * (high - low) },
     { title: "population, %", low: 0, high: 1.06 * most },
   );
-  const taken: number[] = [];
+  const marks = [];
   for (const { index, name } of ranked) {
     const points = kelvin.map((temperature, k): [number, number] => [toX(temperature), toY(share(k, index))]);
     drawing.path(points, INK.ink2, 1.5);
     for (const [k, [x, y]] of points.entries()) {
       drawing.circle(x, y, 4, DEPTH[depthStep(share(k, index) / 100) - 1]!, INK.ink);
     }
-    const y = points.at(-1)?.[1] ?? 0;
-    if (taken.some((other) => Math.abs(other - y) < 12)) continue;
-    taken.push(y);
-    drawing.text(toX(high) + 9, y + 4, name, { fill: INK.ink });
+    marks.push({ name, x: toX(high) + 3, y: points.at(-1)?.[1] ?? 0 });
   }
+  labels(drawing, marks);
   return { name: "temperatures", title, svg: drawing.toString() };
 }

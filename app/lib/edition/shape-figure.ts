@@ -8,7 +8,7 @@ import { layOutShapes } from "./shape-layout.ts";
 import { shownRows } from "./shown.ts";
 import { Drawing, INK } from "./svg.ts";
 
-const CELL = { width: 240, height: 180 };
+const CELL = { width: 260, height: 160 };
 /** Shapes drawn, as on the page. */
 const SHAPES = 4;
 const ATOMS: Record<number, string> = {
@@ -83,7 +83,7 @@ function drawSticks(
   for (const { a, b } of sticks) {
     const [from, to] = [project(positions, a), project(positions, b)];
     const half = [(from.x + to.x) / 2, (from.y + to.y) / 2] as const;
-    drawing.line([from.x, from.y], [to.x, to.y], INK.ground, width + 3);
+    drawing.line([from.x, from.y], [to.x, to.y], INK.ground, width + 3, "butt");
     drawing.line([from.x, from.y], half, colour(a), width);
     drawing.line(half, [to.x, to.y], colour(b), width);
   }
