@@ -128,6 +128,8 @@ test.describe("populations", () => {
     await expect(page.getByText("A temperature from 100 to 1000 K, for example 298.15.")).toBeVisible();
     await page.goBack();
     await expect(finding).toBeVisible();
+    // What was refused belonged to the value before.
+    await expect(page.getByRole("textbox", { name: "Temperature, typed" })).toHaveValue("298.15");
   });
 
   test("the table is walked, sorted and selected by keys", async ({ page }) => {
@@ -158,12 +160,16 @@ test.describe("populations", () => {
 });
 
 test.describe("who may only read", () => {
-  test("a reader sees settings but moves none", async ({ page }) => {
+  test("a reader moves the tolerances for the count alone, and no other setting", async ({ page }) => {
     await openDemo(page, "1,2-Difluoroethane", "distinct-set", "reader");
-    await expect(page.getByRole("slider", { name: "RMSD tolerance" })).toBeDisabled();
-    await expect(
-      page.getByText("an analyst or an owner can move these settings", { exact: false }),
-    ).toBeVisible();
+    await expect(page.getByRole("radio", { name: "All", exact: true })).toBeDisabled();
+    await expect(page.getByText("It is counted in this browser, and nothing is stored")).toBeVisible();
+    await page.getByRole("textbox", { name: "RMSD tolerance, typed" }).fill("0,9 Å");
+    await page.keyboard.press("Enter");
+    await expect(page.getByText("the set below stays as it is", { exact: false })).toBeVisible();
+    await page.getByRole("button", { name: "Back to its settings" }).click();
+    await expect(page.getByRole("textbox", { name: "RMSD tolerance, typed" })).toHaveValue("0.200");
+    expect(page.url()).not.toContain("sift=");
     await expect(page.getByRole("button", { name: "Rename" })).toHaveCount(0);
   });
 

@@ -144,12 +144,15 @@ export function strongSticks(scene: Scene, figure: Figure, place: number, palett
   const writer = new SegmentWriter(bonds.length + scene.shown.length);
   const z = (atom: number) => scene.elements[atom] ?? 0;
   const rgb = (atom: number) => mixed(palette.view.rgb, palette[atomToken(z(atom))].rgb, own);
-  const { wider, own } = layerOf(scene.mode === "overlay" ? place : 0, scene.faint.length > 0);
+  const { slim, slimBall, wider, own } = layerOf(
+    scene.mode === "overlay" ? place : 0,
+    scene.faint.length > 0,
+  );
   const bonded = new Set<number>(bonds);
   for (let k = 0; k + 1 < bonds.length; k += 2) {
     const [a, b] = [bonds[k] ?? 0, bonds[k + 1] ?? 0];
     const [i, j] = [3 * a, 3 * b];
-    const radius = stickRadius(z(a), z(b)) + wider;
+    const radius = slim * stickRadius(z(a), z(b)) + wider;
     const from = [p[i] ?? 0, p[i + 1] ?? 0, p[i + 2] ?? 0] as const;
     const to = [p[j] ?? 0, p[j + 1] ?? 0, p[j + 2] ?? 0] as const;
     const half = [(from[0] + to[0]) / 2, (from[1] + to[1]) / 2, (from[2] + to[2]) / 2] as const;
@@ -162,7 +165,7 @@ export function strongSticks(scene: Scene, figure: Figure, place: number, palett
   for (const atom of scene.shown) {
     if (!isBall(z(atom)) && bonded.has(atom)) continue;
     const at = [p[3 * atom] ?? 0, p[3 * atom + 1] ?? 0, p[3 * atom + 2] ?? 0] as const;
-    writer.add(...at, ...at, rgb(atom), BALL_RADIUS + wider);
+    writer.add(...at, ...at, rgb(atom), slimBall * BALL_RADIUS + wider);
   }
   return writer;
 }

@@ -37,8 +37,9 @@ export function stickRadius(a: number, b: number): number {
   return a === 1 || b === 1 ? HYDROGEN_RADIUS : STICK_RADIUS;
 }
 
-/** Å; what sticks lose in radius where lines lie around them. */
-const SLIMMER = 0.035;
+/** Share of their radius that sticks and balls keep where lines lie around them. */
+const SLIM = 0.5;
+const SLIM_BALL = 0.7;
 
 /**
  * How the structures in atom colours of an overlay are told apart: the first is solid, each further one wider, paler and
@@ -48,11 +49,20 @@ const SLIMMER = 0.035;
  *
  * @param behind 0 for the first one, and for all where they stand side by side
  * @param among true where further conformers lie around them as lines
- * @returns `wider` in Å, `own` the share of its own colour in that of the ground, `back` in Å away from the reader
+ * @returns `slim` and `slimBall`, shares of the radii of sticks and balls, `wider` in Å to be added to them, `own` the share of its own colour in that of the ground, `back` in Å away from the reader
  */
-export function layerOf(behind: number, among = false): { wider: number; own: number; back: number } {
+export function layerOf(
+  behind: number,
+  among = false,
+): { slim: number; slimBall: number; wider: number; own: number; back: number } {
   const own = [1, 0.55, 0.42, 0.34][behind] ?? 0.34;
-  return { wider: 0.055 * behind - (among ? SLIMMER : 0), own, back: 0.12 * behind };
+  return {
+    slim: among ? SLIM : 1,
+    slimBall: among ? SLIM_BALL : 1,
+    wider: 0.055 * behind,
+    own,
+    back: 0.12 * behind,
+  };
 }
 
 /** Width of a line in CSS pixels: 1 to 4 with the step of the tint. */

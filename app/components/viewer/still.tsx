@@ -167,12 +167,13 @@ function Sticks({
   camera: Camera;
   cell: Cell;
 }) {
-  const { wider, own } = layerOf(behind, scene.faint.length > 0);
+  const layer = layerOf(behind, scene.faint.length > 0);
+  const { own } = layer;
   const casing = tokenColour(figure.held && !figure.change ? "held-edge" : "view");
   // Mixed with the ground, not translucent: where sticks meet they would darken each other.
   const paint = (token: Token, z: number) =>
     `color-mix(in srgb, ${tokenColour(token)} ${Math.round(100 * own * (1 - fog(z, stage.reach)))}%, ${tokenColour("view")})`;
-  return pieces(scene, figure, wider, stage.scale * camera.zoom, projector(stage, camera, cell)).map(
+  return pieces(scene, figure, layer, stage.scale * camera.zoom, projector(stage, camera, cell)).map(
     (piece) =>
       piece.to === null ? (
         <circle
@@ -213,7 +214,7 @@ function Sticks({
 function pieces(
   scene: Scene,
   figure: Figure,
-  wider: number,
+  { slim, slimBall, wider }: ReturnType<typeof layerOf>,
   scale: number,
   project: ReturnType<typeof projector>,
 ): Piece[] {
@@ -228,7 +229,7 @@ function pieces(
       from,
       to,
       colours: [atomToken(z(a)), atomToken(z(b))],
-      width: Math.max(1.5, 2 * (stickRadius(z(a), z(b)) + wider) * scale),
+      width: Math.max(1.5, 2 * (slim * stickRadius(z(a), z(b)) + wider) * scale),
       z: (from.z + to.z) / 2,
     });
   }
@@ -237,7 +238,7 @@ function pieces(
     if (!isBall(z(atom)) && bonded.has(atom)) continue;
     const from = project(figure.positions, atom);
     const colour = atomToken(z(atom));
-    const radius = BALL_RADIUS + wider;
+    const radius = slimBall * BALL_RADIUS + wider;
     // A ball is painted after the sticks that end in it.
     found.push({
       key: `${atom}`,

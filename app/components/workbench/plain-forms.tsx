@@ -13,7 +13,7 @@ import { useWorkbench } from "./workbench-context";
  * them is there where script runs.
  */
 
-const FORM = "mt-4 flex flex-wrap items-end gap-x-6 gap-y-4 border-y border-rule py-4 print:hidden";
+const FORM = "mt-4 flex flex-wrap items-start gap-x-6 gap-y-4 border-y border-rule py-4 print:hidden";
 
 /** Temperature and window: an address with them, which the page reads. */
 export function PlainPopulationForm() {
@@ -42,7 +42,9 @@ export function PlainPopulationForm() {
           defaultValue={state.windowKcal === null ? "none" : formatEnergy(state.windowKcal)}
           help="none: no window"
         />
-        <SubmitButton kind="plain">Show the populations</SubmitButton>
+        <span className="pt-6">
+          <SubmitButton kind="plain">Show the populations</SubmitButton>
+        </span>
       </form>
     </noscript>
   );
@@ -115,7 +117,9 @@ export function PlainSiftForm({ ensemble, request }: { ensemble: EnsembleView; r
             { value: "all", label: "All" },
           ]}
         />
-        <SubmitButton kind="plain">Sift with these settings</SubmitButton>
+        <span className="pt-6">
+          <SubmitButton kind="plain">Sift with these settings</SubmitButton>
+        </span>
       </form>
     </noscript>
   );

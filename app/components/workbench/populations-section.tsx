@@ -1,4 +1,4 @@
-import { useDeferredValue, useMemo } from "react";
+import { memo, useCallback, useDeferredValue, useMemo } from "react";
 import { href } from "react-router";
 import { CumulativePopulation } from "~/components/charts/cumulative-population";
 import { EnergyAgainstRmsd } from "~/components/charts/energy-against-rmsd";
@@ -97,6 +97,13 @@ function TemperatureNote() {
   );
 }
 
+// What a slider moves renders twice: at once with the figures as they were, then with the new numbers. The first time must
+// cost nothing.
+const Ladder = memo(EnergyLadder);
+const Cumulative = memo(CumulativePopulation);
+const AgainstRmsd = memo(EnergyAgainstRmsd);
+const Measured = memo(MeasureDistribution);
+
 /** The four figures, drawn when the slider lets them: the numbers above come first. */
 function Charts() {
   const workbench = useWorkbench();
@@ -116,12 +123,15 @@ function Charts() {
     () => (column ? Array.from(column.rmsd, (value, k) => (k < column.known ? value : null)) : null),
     [column],
   );
-  const choose: Choose = (frame, keys) =>
-    select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order);
+  const choose = useCallback<Choose>(
+    (frame, keys) =>
+      select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order),
+    [select, order],
+  );
   if (!ladder || !cumulative) return null;
   return (
     <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
-      <EnergyLadder
+      <Ladder
         rows={rows}
         ladder={ladder}
         outside={outside}
@@ -130,10 +140,10 @@ function Charts() {
         selected={chosen}
         onChoose={choose}
       />
-      <CumulativePopulation cumulative={cumulative} windowKcal={windowKcal} top={ladder.top} />
+      <Cumulative cumulative={cumulative} windowKcal={windowKcal} top={ladder.top} />
       {rows.length > 1 && rmsd === null ? <DistancesAwaited reference={reference?.name ?? "c1"} /> : null}
       {rows.length > 1 && rmsd !== null ? (
-        <EnergyAgainstRmsd
+        <AgainstRmsd
           rows={rows}
           rmsd={rmsd}
           reference={reference?.name ?? "c1"}
@@ -199,7 +209,7 @@ function Distribution({ onChoose }: { onChoose: Choose }) {
   }
   const left = settled.length - histogram.known.length;
   return (
-    <MeasureDistribution
+    <Measured
       histogram={histogram.made}
       kind={measure.kind}
       name={measure.label}

@@ -104,9 +104,11 @@ export function WorkbenchProvider({
     [result, populations, state.windowKcal],
   );
   const roles = useMemo(() => (result ? frameRoles(result) : NO_ROLES), [result]);
+  // Not bound to the rows: those are others at every temperature, the lowest conformer is not.
+  const lowest = rows[0]?.frame ?? first;
   const selected = useMemo(
-    () => chosenFrames(state.selected, rows[0]?.frame ?? first, ensemble.frames),
-    [state.selected, rows, first, ensemble.frames],
+    () => chosenFrames(state.selected, lowest, ensemble.frames),
+    [state.selected, lowest, ensemble.frames],
   );
 
   const anchor = rows[0]?.frame ?? first ?? selected[0] ?? null;
