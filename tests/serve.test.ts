@@ -269,6 +269,28 @@ describe("requests", () => {
     expect(answer.headers.get("x-content-type-options")).toBe("nosniff");
   });
 
+  it("that the router never sees are problem documents for programs, with what is allowed", async () => {
+    const told = (head: string) =>
+      new Promise<string>((resolve) => {
+        const socket = connect(port, "127.0.0.1", () => socket.write(head));
+        let text = "";
+        socket.on("data", (data) => {
+          text += data.toString();
+        });
+        socket.on("close", () => resolve(text));
+      });
+    const unreadable = await fetch(`${base}/api/v1/ensembles/%ff`);
+    expect(unreadable.status).toBe(400);
+    expect(unreadable.headers.get("content-type")).toContain("application/problem+json");
+    expect(await unreadable.json()).toMatchObject({ status: 400, detail: "This address cannot be read." });
+    const end = "Host: a\r\nConnection: close\r\n\r\n";
+    const trace = await told(`TRACE /api/v1/ensembles HTTP/1.1\r\n${end}`);
+    expect(trace).toMatch(/^HTTP\/1\.1 405 [\s\S]*allow: GET, HEAD, POST[\s\S]*problem\+json[\s\S]*"status":405/i);
+    expect(await told(`BREW /api/v1 HTTP/1.1\r\n${end}`)).toMatch(/^HTTP\/1\.1 400 [\s\S]*"status":400/);
+    const long = await told(`GET /api/v1/${"a".repeat(20_000)} HTTP/1.1\r\n${end}`);
+    expect(long).toMatch(/^HTTP\/1\.1 431 [\s\S]*nosniff[\s\S]*problem\+json[\s\S]*16 kB/);
+  });
+
   it("end in a plain 500 where the application breaks", async () => {
     handle = async () => {
       throw new Error("MARKER");

@@ -1,6 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import { METHANE, NO_ANSWERS, tableReport } from "../../tests/factories/table-report.ts";
+import { readAtom } from "./csv/header.ts";
 import { planTable } from "./csv/plan-table.ts";
 import { type TableOptions, TableReader } from "./csv.server.ts";
 import { DomainError } from "./errors.ts";
@@ -24,6 +25,25 @@ describe("a table", () => {
         expect(JSON.stringify(tableReport("t.csv", bytesOf(text.replaceAll("\n", end)), chunk))).toBe(whole);
       }
     }
+  });
+
+  it("reads cells that a ' keeps from being run (row C13)", () => {
+    const table = read("frame,a [Å]\n1,'-1\n2,'+2.5\n3,'x\n");
+    expect([...(table.columns[0]?.values ?? [])]).toEqual([-1, 2.5, 0]);
+    expect(table.columns[0]?.textCount).toBe(1);
+  });
+
+  it("takes names for atoms only as C1, H12 or shift_7 (row C15)", () => {
+    expect(readAtom("q16")).toBeNull();
+    expect(readAtom("charge7")).toBeNull();
+    expect(readAtom("q_16")).toMatchObject({ atom: 16 });
+    expect(readAtom("shift_7")).toMatchObject({ atom: 7, quantity: "shift" });
+    expect(readAtom("H12")).toMatchObject({ atom: 12, element: 1 });
+  });
+
+  it("without rows is refused for that", () => {
+    const table = read("frame,a [Å]\n");
+    expect(() => planTable(table, METHANE, NO_ANSWERS)).toThrow(/no rows below its header/);
   });
 
   it("gives back every number and label that was written", () => {

@@ -154,8 +154,51 @@ function everySpan(ms, run) {
   return () => clearInterval(timer);
 }
 
-function plainAnswer(response, status, text, headers) {
+const TITLES = {
+  400: "The request cannot be read",
+  405: "Method not allowed",
+  408: "Sent too slowly",
+  431: "Too long",
+  500: "This did not work",
+};
+
+function problemText(status, detail) {
+  const type = `tag:lowlying.example,2026:${status === 500 ? "failure" : "invalid"}`;
+  return JSON.stringify({ type, title: TITLES[status], status, detail });
+}
+
+/** What the router does not answer: words for people, a problem document for programs. */
+function plainAnswer(incoming, response, status, text, headers) {
+  if (/^\/+api(\/|$)/.test(incoming.url)) {
+    const type = { "content-type": "application/problem+json; charset=utf-8", "cache-control": "no-store" };
+    response.writeHead(status, { ...headers, ...type }).end(problemText(status, text));
+    return;
+  }
   response.writeHead(status, { ...headers, "content-type": "text/plain; charset=utf-8" }).end(`${text}\n`);
+}
+
+/** What the parser of requests refuses never becomes one: the answer is written by hand, and the connection ends. */
+function refuseUnparsed(error, socket, headers) {
+  const begun = socket._httpMessage?.headersSent === true;
+  if (error.code === "ECONNRESET" || !socket.writable || begun) return void socket.destroy();
+  const [status, words] =
+    error.code === "HPE_HEADER_OVERFLOW"
+      ? [431, "The address and headers of a request may have 16 kB together."]
+      : error.code === "ERR_HTTP_REQUEST_TIMEOUT"
+        ? [408, "The request did not come in time. Send it again."]
+        : error.code === "HPE_INVALID_METHOD"
+          ? [400, "This method is not known here."]
+          : [400, "This is no request of HTTP/1.1."];
+  const body = problemText(status, words);
+  const all = {
+    ...headers,
+    "content-type": "application/problem+json; charset=utf-8",
+    "content-length": Buffer.byteLength(body),
+    "cache-control": "no-store",
+    connection: "close",
+  };
+  const lines = Object.entries(all).map(([name, value]) => `${name}: ${value}\r\n`);
+  socket.end(`HTTP/1.1 ${status} ${TITLES[status]}\r\n${lines.join("")}\r\n${body}`);
 }
 
 /** An address that the router could not decode would fail before any middleware runs. */
@@ -185,9 +228,13 @@ export function makeServer({ application, handle, staticFolder, before, every = 
   const state = { closing: false, open: 0, idle: null };
 
   async function answer(incoming, response) {
-    if (!METHODS.has(incoming.method))
-      return plainAnswer(response, 405, "This method is not known here.", headers);
-    if (!isReadable(incoming.url)) return plainAnswer(response, 400, "This address cannot be read.", headers);
+    if (!METHODS.has(incoming.method)) {
+      const allow = { ...headers, allow: [...METHODS].join(", ") };
+      return plainAnswer(incoming, response, 405, "This method is not known here.", allow);
+    }
+    if (!isReadable(incoming.url)) {
+      return plainAnswer(incoming, response, 400, "This address cannot be read.", headers);
+    }
     if (await sendStatic(files, incoming, response, headers)) return;
     watchSender(incoming, response, { application, headers, every });
     const leaving = new AbortController();
@@ -222,11 +269,12 @@ export function makeServer({ application, handle, staticFolder, before, every = 
       answer(incoming, response).catch((error) => {
         log.error({ err: error }, "request failed outside the application");
         if (response.headersSent) response.destroy();
-        else plainAnswer(response, 500, "Something went wrong on the server. Try again.", headers);
+        else plainAnswer(incoming, response, 500, "Something went wrong on the server. Try again.", headers);
       });
     if (before) before(incoming, response, run);
     else run();
   });
+  server.on("clientError", (error, socket) => refuseUnparsed(error, socket, headers));
   server.headersTimeout = HEADERS_MS;
   server.requestTimeout = REQUEST_MS;
 

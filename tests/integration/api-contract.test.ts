@@ -162,6 +162,13 @@ describe("bodies", () => {
   it("of another type are 415, broken ones 400, wrong ones 422, unknown fields too (C04)", async () => {
     expect((await send('{"level":"A"}', "text/plain")).status).toBe(415);
     expect((await send('{"level":"A"}', "application/jsonp")).status).toBe(415);
+    const packed = await call(on("/ensembles/:id/sifts"), {
+      method: "POST",
+      token: tokens.analyst,
+      body: "{}",
+      headers: { "content-type": "application/json", "content-encoding": "gzip" },
+    });
+    expect([packed.status, (await packed.json()).title]).toEqual([415, "Packed bodies are not read"]);
     expect((await send('{"level":')).status).toBe(400);
     expect((await send("")).status).toBe(400);
     for (const wrong of ["null", "[]", "3", '"A"', '{"level":"A","teamId":"x"}']) {

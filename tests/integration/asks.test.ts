@@ -237,6 +237,40 @@ describe("X13, another order of atoms", () => {
     });
   });
 
+  it("says of a frame that it waits, and a release by hand settles that frame", async () => {
+    const content =
+      frame("-1.5 hand") + frame("-1.4 hand") + frame("-1.3 hand", reversed) + frame("-1.2 hand", reversed);
+    const taken = await takenIn(token, [{ name: "hand.xyz", content }], fields);
+    const waiting = taken.intake.messages.filter(({ code }) => code === "X13");
+    expect(waiting).toMatchObject([
+      { frame: 3, severity: "question" },
+      { frame: 4, severity: "question" },
+    ]);
+    const path = `/ensembles/${taken.id}/frames/3/release`;
+    const { intake: released } = await (await post(token, path, { reason: "looked at" })).json();
+    expect(released).toMatchObject({ accepted: 3, held: 1, questions: [{ id: "order" }] });
+    // The rest stays held, and the released one stays released, read again or not.
+    const intake = await answer(taken.id, { order: "hold" });
+    expect(intake).toMatchObject({ accepted: 3, held: 1, questions: [] });
+    expect(intake.messages.find(({ severity }) => severity === "hold")).toMatchObject({ frame: 4 });
+    for (const energyUnit of ["kJ/mol", "kcal/mol"]) {
+      const again = await (
+        await post(token, `/ensembles/${taken.id}/reread`, { ...fields, energyUnit })
+      ).json();
+      expect(again.intake).toMatchObject({ accepted: 3, held: 1, questions: [] });
+    }
+  });
+
+  it("is settled once the last frame that waits was released", async () => {
+    const content = frame("-1.5 last") + frame("-1.4 last") + frame("-1.3 last", reversed);
+    const taken = await takenIn(token, [{ name: "last.xyz", content }], fields);
+    const path = `/ensembles/${taken.id}/frames/3/release`;
+    const { intake } = await (await post(token, path, { reason: "looked at" })).json();
+    expect(intake).toMatchObject({ accepted: 3, held: 0, questions: [] });
+    const again = await (await post(token, `/ensembles/${taken.id}/reread`, fields)).json();
+    expect(again.intake).toMatchObject({ accepted: 3, held: 0, questions: [] });
+  });
+
   it("is asked of a further batch too", async () => {
     const taken = await takenIn(token, [{ name: "a.xyz", content: frame("energy=-1.5 first") }], fields);
     const form = formOf([

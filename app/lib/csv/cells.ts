@@ -38,7 +38,10 @@ const MOST_CHARACTERS = 200;
  * @example readCell("0,435", "comma") // { kind: "number", value: 0.435, ... }
  */
 export function readCell(written: string, style: NumberStyle | null): CellReading {
-  const text = plainBlanksAndMinus(written).trim();
+  // Our own exports, and spreadsheets, put a ' before what could be run as a formula (row C13).
+  const text = plainBlanksAndMinus(written)
+    .trim()
+    .replace(/^'(?=[=+\-@])/, "");
   if (isMissing(text)) return MISSING_CELL;
   if (text.length > MOST_CHARACTERS) return TEXT_CELL;
   const plain = style === null || style === "point" ? text : asPlain(text, style);

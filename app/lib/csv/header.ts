@@ -104,7 +104,7 @@ export function readAtom(name: string): NamedAtom | null {
   if (behind && PER_ATOM.test(behind[1] ?? "")) return named(behind[2], behind[3], behind[1] ?? null);
   const before = /^([A-Z][a-z]?)[ _]?(\d{1,5})[ _:#.-]+(.+)$/.exec(name);
   if (before && PER_ATOM.test(before[3] ?? "")) return named(before[1], before[2], before[3] ?? null);
-  const bare = /^(.*?[A-Za-z])[ _:#.-]*(\d{1,5})$/.exec(name);
+  const bare = /^(.*?[A-Za-z])[ _:#.-]+(\d{1,5})$/.exec(name);
   if (bare && PER_ATOM.test(bare[1] ?? ""))
     return { atom: Number(bare[2]), element: null, quantity: bare[1] ?? null };
   return null;

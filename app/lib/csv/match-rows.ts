@@ -225,6 +225,14 @@ export function matchRows(keys: Keys, facts: FrameFacts, answers: KeyAnswers): M
 }
 
 function noneMatched(keys: Keys, key: "frame" | "label", facts: FrameFacts): IntakeRejection {
+  if (keys.keys.length === 0) {
+    return reject(keys, {
+      code: "C07",
+      line: 1,
+      message: "The table has no rows below its header.",
+      hint: "Write one row a frame: its number or label, then its values.",
+    });
+  }
   const found = quoteFound(keys.keys[0] ?? "");
   const there =
     key === "frame"

@@ -1,6 +1,6 @@
 import { formatCount, plural } from "../format.ts";
 import { ASK_CODES, type Ask, HOLD, type OpenReading } from "./reading-choices.ts";
-import type { IntakeQuestion, QuestionOption } from "./report.ts";
+import type { IntakeMessage, IntakeQuestion, QuestionOption } from "./report.ts";
 
 /** Frames whose preview a question shows. */
 export const PREVIEWS = 3;
@@ -129,6 +129,30 @@ export function readingQuestion(
   };
 }
 
+/** What is said of a frame that waits for an answer. */
+export function waitingMessage(ask: Ask): Pick<IntakeMessage, "code" | "severity" | "message" | "hint"> {
+  const text = ask === "group" ? GROUP_TEXT : WORDS[ask].text;
+  return {
+    code: ASK_CODES[ask],
+    severity: "question",
+    message: `The frame waits for an answer: ${text}`,
+    hint: "It takes no part until that is answered, or somebody releases it.",
+  };
+}
+
+/** What is said of a frame that an answer holds. */
+export function heldMessage(ask: Ask): Pick<IntakeMessage, "code" | "severity" | "message" | "hint"> {
+  const text = ask === "group" ? GROUP_TEXT : WORDS[ask].text;
+  return {
+    code: ASK_CODES[ask],
+    severity: "hold",
+    message: `The answer was to keep such frames held: ${text}`,
+    hint: "Write the file so that it does not leave this open, and take it in again.",
+  };
+}
+
+const GROUP_TEXT = "Which molecule is the ensemble?";
+
 const charged = (charge: number | null) =>
   charge === null || charge === 0 ? "" : `, charge ${charge > 0 ? "+" : "−"}${Math.abs(charge)}`;
 
@@ -137,7 +161,7 @@ export function groupQuestion(molecules: readonly MoleculeChoice[], inSdf: boole
   return {
     id: "group",
     code: inSdf ? "S21" : "X12",
-    text: "Which molecule is the ensemble?",
+    text: GROUP_TEXT,
     reason:
       "The files hold several. The one with most frames was taken; the others are held until you choose.",
     options: molecules.map(({ frame, frames, formula, charge, difference, proposed }) => ({

@@ -77,3 +77,17 @@ it("refuses lists of unequal length", () => {
   expect(() => kendallTauB([1, 2], [1])).toThrow(RangeError);
   expect(() => pearson([1, 2], [1])).toThrow(RangeError);
 });
+
+it("equal rankings give exactly 1, ties or none", () => {
+  for (let n = 3; n < 60; n++) {
+    const x = Array.from({ length: n }, (_, k) => (k * 7919) % 101);
+    expect(kendallTauB(x, x)).toBe(1);
+    expect(
+      kendallTauB(
+        x,
+        x.map((value) => -value),
+      ),
+    ).toBe(-1);
+  }
+  expect(kendallTauB([1, 2, 2, 3], [1, 2, 2, 3])).toBe(1);
+});

@@ -84,7 +84,10 @@ export function kendallTauB(x: ArrayLike<number>, y: ArrayLike<number>): number 
   }
   const all = pairsOf(n);
   const concordant = all - tiedX - tiedY + tiedBoth - discordant;
-  return clamp((concordant - discordant) / Math.sqrt(all - tiedX) / Math.sqrt(all - tiedY));
+  const [untiedX, untiedY] = [all - tiedX, all - tiedY];
+  // With as many ties on both sides the root is the number itself, and equal rankings give 1 to the last digit.
+  const scale = untiedX === untiedY ? untiedX : Math.sqrt(untiedX) * Math.sqrt(untiedY);
+  return clamp((concordant - discordant) / scale);
 }
 
 function pairsOf(n: number): number {

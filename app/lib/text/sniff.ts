@@ -57,6 +57,14 @@ const TEXT_FORMATS: readonly (readonly [line: RegExp, looksLike: string])[] = [
     /\b(?:SCF Done|Total Energy|FINAL SINGLE POINT|Normal termination|Input orientation)\b/i,
     "the output of a calculation",
   ],
+  [/\bPsi4\b/, "the output of Psi4"],
+  // Rules and banners, versions, and what calculations report: no structure file has them.
+  [/^\s*([-=*#_+~])\1{19,}\s*$/, "the output of a program"],
+  [/\b(?:version|release|revision)\b[ :]*v?\d+\.\d/i, "the output of a program"],
+  [
+    /\b(?:basis set|wall time|cpu time|number of (?:basis functions|electrons)|SCF (?:iterations?|converge\w*)|Hartree[- ]Fock|gradient norm)\b/i,
+    "the output of a calculation",
+  ],
   [
     /\b(?:CARTESIAN COORDINATES|Program Version|Copyright|Calculation started)\b/i,
     "the output of a calculation",

@@ -59,6 +59,13 @@ describe("sniffing", () => {
   });
 
   test("tells the three formats apart by content", () => {
+    const said = (text: string) => sniff(bytes(text), "run.out").refusal?.message;
+    const rule = "-".repeat(60);
+    expect(said(`\n    Psi4: An Open-Source Quantum Chemistry Package\n`)).toContain("the output of Psi4");
+    expect(said(`\n ${rule}\n   a banner\n ${rule}\n`)).toContain("the output of a program");
+    expect(said("Some package, version 3.2\nhost: a\n")).toContain("the output of a program");
+    expect(said("run on a node\n  wall time used: 3 s\n")).toContain("the output of a calculation");
+    expect(said("C 0.1 0.2 0.3\nH 0.1 0.2 1.3\n")).toBeUndefined();
     expect(sniff(bytes("3\nwater\nO 0 0 0\n"), "a.txt").format).toBe("xyz");
     expect(sniff(bytes("name;E\na;1\nb;2\n"), "a.txt").format).toBe("csv");
     const mol =

@@ -51,7 +51,7 @@ export function refuseFirstLine(file: string, line: number, text: string): never
     message: `Line ${line} should hold the atom count.`,
     hint: looksLikeAtom(text, PLAIN_LAYOUT)
       ? "These look like atoms without a header: put a line with their count and a comment line before them."
-      : "XYZ begins with a line that holds the number of atoms and nothing else.",
+      : "XYZ begins with a line that holds the number of atoms and nothing else. If this is the output of a program, export its structures as XYZ or SDF.",
   });
 }
 

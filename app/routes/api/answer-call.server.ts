@@ -73,6 +73,17 @@ export function readQuery<Schema extends z.ZodType>(url: URL, schema: Schema): z
   return check(schema, Object.fromEntries(url.searchParams), "An option of the address is not right");
 }
 
+/** Bodies are taken as they are: a packed one would only seem to be broken. */
+function refusePacked(request: Request): void {
+  const packing = request.headers.get("content-encoding")?.trim() ?? "identity";
+  if (/^(identity)?$/i.test(packing)) return;
+  throw new DomainError(
+    "unsupported",
+    "Packed bodies are not read",
+    `Send the body unpacked; found "${packing.slice(0, 40)}" as its content-encoding. Files may be packed with gzip themselves.`,
+  );
+}
+
 /** A JSON body: 415 for another content type, 400 where it does not parse, 422 where it does not fit. */
 export async function readJson<Schema extends z.ZodType>(
   request: Request,
@@ -86,6 +97,7 @@ export async function readJson<Schema extends z.ZodType>(
       `Send the body as "application/json"; found ${type ?? "no content type"}.`,
     );
   }
+  refusePacked(request);
   const text = await request.text();
   let data: unknown;
   try {
@@ -107,6 +119,7 @@ export async function readJsonOrForm<Schema extends z.ZodType>(
   if (!/^(multipart\/form-data|application\/x-www-form-urlencoded)\b/i.test(type)) {
     return readJson(request, schema);
   }
+  refusePacked(request);
   const form = await request.formData().catch(() => {
     throw new DomainError("invalid", "The form is broken", "The form does not parse.", {
       extra: { status: 400 },

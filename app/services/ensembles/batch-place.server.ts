@@ -47,10 +47,12 @@ export const optionsAt = (
   { ensemble, files, batch }: BatchPlace,
   energyFrom: string | null,
   choices: ReadingChoices = {},
+  settled?: ReadonlySet<number>,
 ): ReadingOptions => ({
   energyFrom,
   group: groupOf(ensemble),
   map: true,
   after: { frames: ensemble.frames, files, batch },
   choices,
+  settled,
 });

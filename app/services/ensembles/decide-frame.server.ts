@@ -1,7 +1,8 @@
-import { and, eq, isNull } from "drizzle-orm";
+import { and, count, eq, isNull, ne } from "drizzle-orm";
 import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
-import { ensembles, frames, intakeMessages } from "../../db/schema.server.ts";
+import { ensembles, frames, intakeMessages, questions } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { readAskId } from "../../lib/intake/reading-questions.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { FrameState } from "../../lib/intake/report.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
@@ -9,7 +10,11 @@ import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
 import { countFrames } from "./intake-rows.server.ts";
+import { findQuestions } from "./load-intake.server.ts";
 import { refreshChirality } from "./refresh-chirality.server.ts";
+
+/** How a question was answered that has no proposal: frame by frame. */
+const RELEASED = "released";
 
 type At = Grant & { ensembleId: string };
 
@@ -98,6 +103,50 @@ async function remarkOf(tx: Transaction, at: At, number: number): Promise<string
 }
 
 /**
+ * A frame that is released while it waits is settled: it goes on being read as proposed. Once none waits, what was asked
+ * of the reading is answered by that.
+ */
+async function settleWaiting(tx: Transaction, at: At, number: number): Promise<void> {
+  await tx
+    .update(frames)
+    .set({ readState: "held" })
+    .where(and(eq(frames.ensembleId, at.ensembleId), eq(frames.number, number)));
+  await tx
+    .delete(intakeMessages)
+    .where(
+      and(
+        eq(intakeMessages.ensembleId, at.ensembleId),
+        eq(intakeMessages.frame, number),
+        eq(intakeMessages.severity, "question"),
+      ),
+    );
+  const [waiting] = await tx
+    .select({ n: count() })
+    .from(frames)
+    .where(
+      and(
+        eq(frames.ensembleId, at.ensembleId),
+        eq(frames.holdReason, "waits-for-answer"),
+        ne(frames.number, number),
+      ),
+    );
+  if ((waiting?.n ?? 0) > 0) return;
+  const open = (await findQuestions(at.ensembleId, tx)).filter(({ answered }) => answered === undefined);
+  const settled = open.filter(({ id }) => (readAskId(id)?.ask ?? "group") !== "group");
+  for (const question of settled) {
+    const option = question.options.find(({ proposed }) => proposed)?.id ?? RELEASED;
+    await tx
+      .update(questions)
+      .set({ answered: option, answeredBy: at.userId, answeredAt: new Date() })
+      .where(and(eq(questions.ensembleId, at.ensembleId), eq(questions.id, question.id)));
+  }
+  await tx
+    .update(ensembles)
+    .set({ openQuestions: open.length - settled.length })
+    .where(eq(ensembles.id, at.ensembleId));
+}
+
+/**
  * Releases a held frame: it takes part again. Another species or configuration, and what cannot be read, stay held.
  *
  * @throws DomainError conflict where it is not held, or may not be released; the refusal stands in the logbook
@@ -116,17 +165,21 @@ export async function releaseFrame({
     if (why !== null) return { refused: why };
     // What only its reader held comes back with a remark: somebody decided against it.
     const state = frame.readState === "held" ? "remarked" : frame.readState;
+    const waited = frame.holdReason === "waits-for-answer";
     const note = frame.readState === "accepted" ? null : await remarkOf(tx, at, number);
     await write(
       tx,
       at,
       number,
-      { state, holdReason: null, note: note ?? (state === "remarked" ? reason : null) },
+      waited
+        ? { state: "remarked", holdReason: null, note: reason }
+        : { state, holdReason: null, note: note ?? (state === "remarked" ? reason : null) },
       version,
     );
     const heldFor = frame.holdReason ?? "";
+    if (heldFor === "waits-for-answer") await settleWaiting(tx, at, number);
     await writeEntry(tx, at, at, { type: "release", data: { frame: number, reason, heldFor } });
-    return { state };
+    return { state: waited ? ("remarked" as const) : state };
   });
   if (outcome.state) return outcome.state;
   const why = outcome.refused ?? "";

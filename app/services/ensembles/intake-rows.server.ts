@@ -115,7 +115,12 @@ export async function remarkFrames(
     const numbers = some.map(([number]) => number);
     await tx
       .update(frames)
-      .set({ state: "remarked", readState: "remarked", note: sql`coalesce(${frames.note}, ${own})` })
+      .set({
+        state: "remarked",
+        // A frame that a person released goes on being told by it.
+        readState: sql`if(${frames.readState} = 'held', 'held', 'remarked')`,
+        note: sql`coalesce(${frames.note}, ${own})`,
+      })
       .where(
         and(eq(frames.ensembleId, ensembleId), inArray(frames.number, numbers), ne(frames.state, "held")),
       );

@@ -11,7 +11,7 @@ import { EnergyScan } from "../../lib/intake/energies.ts";
 import { isExtended } from "../../lib/intake/extended-comment.ts";
 import { energiesAsWritten } from "../../lib/intake/field-energies.ts";
 import { formatMessage } from "../../lib/intake/format-message.ts";
-import type { MoleculeGroup } from "../../lib/intake/frame-record.ts";
+import type { FrameVerdict, MoleculeGroup } from "../../lib/intake/frame-record.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
 import {
   AS_PROPOSED,
@@ -22,7 +22,13 @@ import {
   withDecimalPoints,
   withProposals,
 } from "../../lib/intake/reading-choices.ts";
-import { groupQuestion, PREVIEWS, readingQuestion } from "../../lib/intake/reading-questions.ts";
+import {
+  groupQuestion,
+  heldMessage,
+  PREVIEWS,
+  readingQuestion,
+  waitingMessage,
+} from "../../lib/intake/reading-questions.ts";
 import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../../lib/intake/report.ts";
 import { isSdfFrame } from "../../lib/sdf/frame.ts";
@@ -75,6 +81,8 @@ export interface ReadingOptions {
   after?: { frames: number; files: number; batch: number };
   /** What was answered of how the files are to be read; the rest is read as proposed and asked. */
   choices?: ReadingChoices;
+  /** Frames that a person released while they waited: read as proposed, whatever was answered for the others. */
+  settled?: ReadonlySet<number>;
 }
 
 /** Frames, molecule and messages of an upload, once all its files are read. */
@@ -150,8 +158,11 @@ export class Reading {
   private readonly labels = new Map<number, (string | null)[]>();
   private readonly formats = new Set<string>();
   private readonly choices: ReadingChoices;
-  /** Frames that wait for an answer, with the state that their reader gave them. */
-  private readonly waiting = new Map<number, "accepted" | "remarked">();
+  private readonly settled: ReadonlySet<number>;
+  /** Frames that wait for an answer, with the state that their reader gave them, and what they wait for first. */
+  private readonly waiting = new Map<number, { state: "accepted" | "remarked"; open: OpenReading }>();
+  /** Frames that the answer holds, where it does not hold for all. */
+  private readonly refused = new Map<number, OpenReading>();
   /** What is asked, of how many frames, and the first of them. */
   private readonly asked = new Map<Exclude<Ask, "group">, { frames: number; first: OpenReading[] }>();
   /** Numbers of some frames have decimal commas. */
@@ -168,6 +179,7 @@ export class Reading {
     this.teamId = teamId;
     this.options = options;
     this.choices = withProposals(options.choices ?? {});
+    this.settled = options.settled ?? new Set();
     this.blocks = new BlockWriter(this.ensembleId);
     this.rows = new FrameWriter(this.ensembleId);
     this.classifier = new FrameClassifier({ group: options.group, map: options.map });
@@ -297,7 +309,7 @@ export class Reading {
       file: name,
       firstNumber: before + 1,
       limits: { frames: settings.MAX_FRAMES, atoms: settings.MAX_ATOMS },
-      choices: this.choices,
+      choices: this.readerChoices(),
     });
     const position = this.files.length + (after?.files ?? 0);
     const had = this.frames;
@@ -324,6 +336,16 @@ export class Reading {
       firstFrame: before + 1,
       frames: this.frames - had,
     });
+  }
+
+  /** Where single frames were released, the readers read all as proposed, and what the answer holds is held here. */
+  private readerChoices(): ReadingChoices {
+    if (this.settled.size === 0) return this.choices;
+    const asked = Object.entries(this.choices).map(([ask, option]) => [
+      ask,
+      option === HOLD ? AS_PROPOSED : option,
+    ]);
+    return Object.fromEntries(asked) as ReadingChoices;
   }
 
   private async takeAll(file: number, found: XyzFrame[]): Promise<void> {
@@ -367,7 +389,7 @@ export class Reading {
       energy: sdf ? energiesAsWritten(sdf.fields) : comment === "" ? null : comment,
       table: sdf,
       // A record of an SDF is mapped without asking (row S22), a frame of XYZ once somebody said so (X13).
-      map: sdf !== null || this.choices.order !== HOLD,
+      map: sdf !== null || this.choices.order !== HOLD || this.settled.has(number),
     });
     const { shape, indexInShape, mapping } = place;
     await this.blocks.add(shape, place.positions);
@@ -388,12 +410,19 @@ export class Reading {
 
   /** Notes what a frame leaves open; it is held until that is answered. */
   private askOf(frame: XyzFrame, mapping: Int32Array | null, state: "accepted" | "remarked"): void {
+    if (this.settled.has(frame.number)) return;
     const open = [...(frame.open ?? [])];
+    const held = open.find(({ ask }) => this.choices[ask] === HOLD);
+    if (held) {
+      this.refused.set(frame.number, held);
+      return;
+    }
     if (mapping !== null && !isSdfFrame(frame) && this.choices.order === AS_PROPOSED) {
       open.push(openOrder(frame, mapping));
     }
-    if (open.length === 0) return;
-    this.waiting.set(frame.number, state);
+    const [first] = open;
+    if (first === undefined) return;
+    this.waiting.set(frame.number, { state, open: first });
     for (const reading of open) {
       if (reading.ask === "group") continue;
       const asked = this.asked.get(reading.ask) ?? { frames: 0, first: [] };
@@ -422,18 +451,8 @@ export class Reading {
     if (shape !== null && shape !== 0 && !batch) await this.makeFirst(shape);
     const decisions = new Map<number, FrameDecision>();
     for (const verdict of classification.frames) {
-      const waits = this.waiting.get(verdict.frame);
-      if (verdict.state === "accepted" && waits === undefined) continue;
-      this.messages.addAll(verdict.messages);
-      const note = verdict.messages[0]?.message ?? null;
-      const { frame: number, state, reason } = verdict;
-      if (waits === undefined || state === "held") {
-        decisions.set(number, { number, state, holdReason: reason, note });
-        continue;
-      }
-      const readState = state === "remarked" ? state : waits;
-      const holdReason = "waits-for-answer" as const;
-      decisions.set(number, { number, state: "held", readState, holdReason, note });
+      const decision = this.decide(verdict);
+      if (decision !== null) decisions.set(verdict.frame, decision);
     }
     this.messages.addAll(classification.messages);
     await writeDecisions(this.ensembleId, [...decisions.values()]);
@@ -446,7 +465,8 @@ export class Reading {
       shape,
       otherOrder: classification.frames.some(
         ({ frame, reason }) =>
-          reason === "other-order" && (this.choices.order !== HOLD || this.isInSdf(frame)),
+          reason === "other-order" &&
+          (this.choices.order !== HOLD || this.settled.has(frame) || this.isInSdf(frame)),
       ),
       questions: this.questions(classification),
       decisions,
@@ -456,6 +476,33 @@ export class Reading {
       extended: this.extended * 2 > this.sound,
       atomLabels: shape === null ? null : (this.labels.get(shape) ?? null),
     };
+  }
+
+  /** What becomes of a frame beyond being accepted, with the messages that go along. */
+  private decide(verdict: FrameVerdict): FrameDecision | null {
+    const { frame: number, state, reason } = verdict;
+    const waits = this.waiting.get(number);
+    const refused = this.refused.get(number);
+    const open = refused ?? waits?.open;
+    if (state === "held" || open === undefined) {
+      if (state === "accepted") return null;
+      this.messages.addAll(verdict.messages);
+      return { number, state, holdReason: reason, note: verdict.messages[0]?.message ?? null };
+    }
+    const file = this.fileOf(number);
+    const { ask, line } = open;
+    const told = refused ? heldMessage(ask) : waitingMessage(ask);
+    this.messages.add({ ...told, file, line, frame: number });
+    if (refused) return { number, state: "held", holdReason: "unclear", note: told.message };
+    const readState = state === "remarked" ? state : (waits?.state ?? state);
+    return { number, state: "held", readState, holdReason: "waits-for-answer", note: told.message };
+  }
+
+  private fileOf(frame: number): string {
+    const own = this.files.find(
+      ({ firstFrame, frames }) => frame >= firstFrame && frame < firstFrame + frames,
+    );
+    return own?.entry ?? own?.name ?? "";
   }
 
   private isInSdf(frame: number): boolean {

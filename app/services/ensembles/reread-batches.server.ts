@@ -43,14 +43,18 @@ async function readOne(
   readId: string,
   files: readonly StoredFile[],
   stated: WrittenAnswers,
-  batch: number,
+  { batch, settled }: { batch: number; settled: ReadonlySet<number> },
 ) {
   const [ensemble] = await db.select().from(ensembles).where(eq(ensembles.id, readId));
   if (ensemble === undefined) throw new Error(`The reading ${readId} is gone.`);
   const place = { ensemble, files: (await countFiles(readId)).files, batch };
   const level = await ownLevel(ensemble, stated.level);
   const from = numberOf(stated.energyFrom, level);
-  const { reading, result } = await readStored(at, files, optionsAt(place, from, stated.reading ?? {}));
+  const { reading, result } = await readStored(
+    at,
+    files,
+    optionsAt(place, from, stated.reading ?? {}, settled),
+  );
   try {
     const done = await completeBatch(reading, result, ensemble, {
       stated,
@@ -86,6 +90,8 @@ export async function rereadBatches(
     before: WrittenAnswers;
     /** How files are to be read from now on, by batch. */
     readings: ReadonlyMap<number, ReadingChoices>;
+    /** Frames that a person released while they waited. */
+    settled: ReadonlySet<number>;
   },
 ): Promise<void> {
   const answers = await answersOf(at.ensembleId);
@@ -93,6 +99,15 @@ export async function rereadBatches(
     const own = files.filter((file) => file.batch === batch);
     const stated = ownAnswers(answers.get(batch) ?? NOTHING_SAID, known.before);
     const reading = known.readings.get(batch) ?? stated.reading;
-    await readOne(at, readId, own, { ...stated, ...(reading ? { reading } : {}) }, batch);
+    await readOne(
+      at,
+      readId,
+      own,
+      { ...stated, ...(reading ? { reading } : {}) },
+      {
+        batch,
+        settled: known.settled,
+      },
+    );
   }
 }

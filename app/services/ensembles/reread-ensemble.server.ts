@@ -1,5 +1,5 @@
 import { and, eq, inArray, isNull, like, ne, or } from "drizzle-orm";
-import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
+import { db, inTransaction, type Queryable, type Transaction } from "../../db/client.server.ts";
 import {
   batches,
   columns,
@@ -46,7 +46,7 @@ async function heldByHand(tx: Transaction, ensembleId: string) {
 }
 
 /** Frames that a person released although their reader held them. */
-async function releasedByHand(tx: Transaction, ensembleId: string) {
+async function releasedByHand(tx: Queryable, ensembleId: string) {
   return tx
     .select({ number: frames.number, note: frames.note })
     .from(frames)
@@ -126,6 +126,13 @@ async function keepDecisions(
         ),
       );
   }
+  // What tells a release by hand from what was read stays, for the next time.
+  const numbers = released.map(({ number }) => number);
+  if (numbers.length === 0) return;
+  await tx
+    .update(frames)
+    .set({ readState: "held" })
+    .where(and(eq(frames.ensembleId, ensembleId), inArray(frames.number, numbers), ne(frames.state, "held")));
 }
 
 /** A batch that was added while the files were read would be lost. */
@@ -282,9 +289,11 @@ export async function readAgain(at: At, plan: RereadPlan): Promise<void> {
   const [files, further] = [all.filter(({ batch }) => batch === 0), all.filter(({ batch }) => batch > 0)];
   const before = await answersBefore(at);
   const { energyFrom } = plan.energies;
+  const settled = new Set((await releasedByHand(db, at.ensembleId)).map(({ number }) => number));
   const { reading, result } = await readStored(at, files, {
     energyFrom: energyFrom === NO_ENERGY ? null : energyFrom,
     choices: plan.answers.reading ?? {},
+    settled,
   });
   try {
     await completeReading(reading, result, {
@@ -295,7 +304,11 @@ export async function readAgain(at: At, plan: RereadPlan): Promise<void> {
       mode: further.length === 0 ? plan.mode : { ...plan.mode, refuseOpen: true, confirmUnit: false },
       sources: sourcesOf(reading, files),
     });
-    await rereadBatches(at, reading.ensembleId, further, { before, readings: plan.batchReadings });
+    await rereadBatches(at, reading.ensembleId, further, {
+      before,
+      readings: plan.batchReadings,
+      settled,
+    });
     await inTransaction((tx) => adopt(tx, at, reading.ensembleId, plan));
   } catch (error) {
     await takeBack(reading);

@@ -1,12 +1,6 @@
 import { and, asc, eq, inArray, isNull, ne, or } from "drizzle-orm";
 import type { Transaction } from "../../db/client.server.ts";
-import {
-  ensembleFiles,
-  ensembles,
-  frames,
-  intakeMessages,
-  questions as questionTable,
-} from "../../db/schema.server.ts";
+import { ensembleFiles, ensembles, frames, questions as questionTable } from "../../db/schema.server.ts";
 import type { Configuration } from "../../lib/chem/stereo.ts";
 import {
   decideEnergies,
@@ -146,9 +140,6 @@ async function writeSettled(
   const waits = (await findQuestions(id, tx)).some((one) => one.answered === undefined && one.id !== "group");
   const released = waits ? 0 : await releaseAnswered(tx, id);
   await remarkFrames(tx, id, settled.messages);
-  await tx
-    .delete(intakeMessages)
-    .where(and(eq(intakeMessages.ensembleId, id), eq(intakeMessages.severity, "question")));
   const list = new MessageList();
   list.addAll(settled.messages);
   await insertMessages(tx, id, list.messages());
