@@ -7,7 +7,11 @@ export function SectionHead({ title, aside, id }: { title: ReactNode; aside?: Re
       <h2 id={id} className="text-lg font-semibold tracking-title sm:text-xl">
         {title}
       </h2>
-      {aside ? <span className="text-xs print:hidden">{aside}</span> : null}
+      {aside ? (
+        <span className="text-xs print:hidden [&_a]:inline-flex [&_a]:min-h-6 [&_a]:items-center pointer-coarse:[&_a]:min-h-11">
+          {aside}
+        </span>
+      ) : null}
     </div>
   );
 }

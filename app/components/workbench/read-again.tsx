@@ -34,7 +34,9 @@ export function ReadAgain({ intake }: { intake: IntakeView }) {
   }, [answer]);
   return (
     <details className="mt-4 print:hidden">
-      <summary className="cursor-pointer text-link">Read again with other answers</summary>
+      <summary className="cursor-pointer py-1 text-link pointer-coarse:py-3">
+        Read again with other answers
+      </summary>
       <fetcher.Form
         method="post"
         action={href("/ensembles/:id/intake", { id: ensemble.id })}
