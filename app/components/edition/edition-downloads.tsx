@@ -95,11 +95,11 @@ function Figures({
         </a>
         <span className="text-ink-2">SVG, zip</span>
       </span>
-      <span className="mt-1 flex flex-wrap gap-x-3 text-xs">
+      <span className="mt-1 flex flex-wrap gap-x-4 text-xs">
         {figures.map(({ name }) => (
           <a
             key={name}
-            className={linkClass}
+            className={`inline-flex min-h-6 items-center ${linkClass}`}
             href={addresses.file(name)}
             download
             aria-label={FILE_WORDS[name]?.title ?? name}
@@ -108,7 +108,7 @@ function Figures({
           </a>
         ))}
       </span>
-      <span className="with-script print:hidden mt-1 block text-xs">
+      <span className="with-script print:hidden mt-1 flex min-h-6 flex-wrap items-center text-xs">
         <TextButton disabled={state === "making"} onClick={() => void make()}>
           {state === "making" ? "Drawing" : "SVG and PNG together, zip"}
         </TextButton>
