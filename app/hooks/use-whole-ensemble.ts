@@ -13,12 +13,6 @@ import type {
 
 /** Coordinates of as many bytes are fetched unasked; more than that only when the reader wants it. */
 const UNASKED_BYTES = 24 * 2 ** 20;
-/**
- * A thread that has worked on an older question as long is ended for a newer one. Starting another one costs a copy of
- * all frames and the time in which its code gets warm: not for what is about to be answered.
- */
-const PATIENCE_MS = 1500;
-
 export const PLATEAU_TOLERANCES = [0.02, 0.05, 0.1, 0.15, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.85, 1];
 export const PLATEAU_FACTORS = [0.5, 1, 2];
 const NEAREST_PAIRS = 5;
@@ -32,7 +26,7 @@ export interface WholeEnsemble {
   error: string | null;
   /** Fetches what is too large to be fetched unasked. */
   load(): void;
-  /** Newest answer; its key says to which recipe. */
+  /** Newest answer; its key says to which recipe: while a thumb moves, that may be one before the newest. */
   count: CountAnswer | null;
   plateau: PlateauAnswer | null;
   nearness: NearnessAnswer | null;
@@ -79,6 +73,8 @@ export function useWholeEnsemble(
     if (!begin) return;
     const control = new AbortController();
     setError(null);
+    // A count of other frames is no count of these.
+    setCount(null);
     fetchFrames(source, control.signal)
       .then((bytes) => setHeld({ source, bytes }))
       .catch((caught) => {
@@ -149,7 +145,7 @@ async function fetchFrames(address: string, signal: AbortSignal): Promise<ArrayB
   return response.arrayBuffer();
 }
 
-/** Two threads over the same frames; one that is busy with an older question is ended for a newer one of its kind. */
+/** Two threads over the same frames. They finish what they are about to answer and then take the newest question. */
 function useThreads(bytes: ArrayBuffer | null, unit: string | null, hear: (answer: WholeAnswer) => void) {
   const listener = useRef(hear);
   listener.current = hear;
@@ -181,43 +177,19 @@ function useThreads(bytes: ArrayBuffer | null, unit: string | null, hear: (answe
 }
 
 class Thread {
-  private worker: Worker;
-  /** Questions without an answer yet, by kind, and since when. */
-  private readonly open = new Map<string, { question: WholeQuestion; since: number }>();
+  private readonly worker: Worker;
 
-  constructor(
-    private readonly bytes: ArrayBuffer,
-    private readonly kcalPerUnit: number | null,
-    private readonly hear: (answer: WholeAnswer) => void,
-  ) {
-    this.worker = this.start();
+  constructor(bytes: ArrayBuffer, kcalPerUnit: number | null, hear: (answer: WholeAnswer) => void) {
+    this.worker = new Worker(new URL("./whole-ensemble.worker.ts", import.meta.url), { type: "module" });
+    this.worker.addEventListener("message", ({ data }: MessageEvent<WholeAnswer>) => hear(data));
+    this.worker.postMessage({ kind: "open", bytes, kcalPerUnit } satisfies WholeQuestion);
   }
 
   ask(question: Exclude<WholeQuestion, { kind: "open" }>): void {
-    const older = this.open.get(question.kind);
-    const stuck = older !== undefined && performance.now() - older.since > PATIENCE_MS;
-    this.open.set(question.kind, { question, since: performance.now() });
-    if (stuck && question.kind !== "nearness") {
-      this.worker.terminate();
-      this.worker = this.start();
-      for (const other of this.open.values()) this.worker.postMessage(other.question);
-    } else this.worker.postMessage(question);
+    this.worker.postMessage(question);
   }
 
   end(): void {
     this.worker.terminate();
-  }
-
-  private start(): Worker {
-    const worker = new Worker(new URL("./whole-ensemble.worker.ts", import.meta.url), { type: "module" });
-    worker.addEventListener("message", ({ data }: MessageEvent<WholeAnswer>) => {
-      for (const [kind, { question }] of this.open) {
-        if (data.kind !== "progress" && "key" in question && question.key === data.key)
-          this.open.delete(kind);
-      }
-      this.hear(data);
-    });
-    worker.postMessage({ kind: "open", bytes: this.bytes, kcalPerUnit: this.kcalPerUnit });
-    return worker;
   }
 }

@@ -15,6 +15,8 @@ export type WholeQuestion =
 export interface CountAnswer {
   kind: "count";
   key: string;
+  /** What was counted: while a thumb moves, the answer may be older than the question at hand. */
+  recipe: SiftRecipe;
   kept: number;
   seconds: number;
 }

@@ -2,34 +2,54 @@ import { type AcceptedData, unpackAccepted } from "~/lib/accepted-data";
 import { NearnessWork } from "~/lib/align/nearness";
 import { makePlan } from "~/lib/align/plan";
 import type { SiftRecipe } from "~/lib/recipe/recipe";
-import { runSift } from "~/lib/recipe/run";
-import { countAgainstTolerance } from "~/lib/sift/count-against-tolerance";
+import { beginCounts } from "~/lib/sift/count-against-tolerance";
+import { ToleranceCounter } from "~/lib/sift/tolerance-counter";
 import { type Graph, makeGraph } from "~/lib/structure";
 import type { WholeAnswer, WholeQuestion } from "./whole-ensemble-protocol";
 
 /**
- * Questions about all accepted frames, off the page's thread, with the functions that the server runs. Of each kind the
- * newest question counts; the search among the kept conformers goes in slices, so that newer ones are heard.
+ * Questions about all accepted frames, off the page's thread, with the functions that the server runs. All work goes in
+ * slices, so that newer questions are heard. What is being counted is counted to its end, or a thumb that moves on would
+ * never see a number; of the questions that came meanwhile the newest is next.
  */
 const SLICE_MS = 40;
+/** Work of this length that is not half done gives way to a newer question. */
+const PATIENCE_MS = 1000;
 /** Nodes that one comparison may cost: a list must not hang on a single pair. */
 const NODE_LIMIT = 20_000;
 
 type Asked<Kind extends WholeQuestion["kind"]> = Extract<WholeQuestion, { kind: Kind }>;
 
+interface Lane<Kind extends "count" | "plateau"> {
+  next: Asked<Kind> | null;
+  work: Work | null;
+}
+
+interface Work {
+  key: string;
+  run: { next(): boolean; readonly done: number };
+  answer(seconds: number): WholeAnswer;
+  /** Of this thread, without its pauses. */
+  spentMs: number;
+}
+
 let data: AcceptedData | null = null;
 let graph: Graph | null = null;
 let kcalPerUnit: number | null = null;
-let count: Asked<"count"> | null = null;
-let plateau: Asked<"plateau"> | null = null;
+/** Counts and curves: the one under way and the newest question of its kind. */
+const lanes = {
+  count: { next: null, work: null } as Lane<"count">,
+  plateau: { next: null, work: null } as Lane<"plateau">,
+};
+let counter: { key: string; counter: ToleranceCounter } | null = null;
 let nearness: { asked: Asked<"nearness">; work: NearnessWork } | null = null;
 let running = false;
 
 self.addEventListener("message", ({ data: asked }: MessageEvent<WholeQuestion>) => {
   try {
     if (asked.kind === "open") open(asked);
-    else if (asked.kind === "count") count = asked;
-    else if (asked.kind === "plateau") plateau = asked;
+    else if (asked.kind === "count") lanes.count.next = asked;
+    else if (asked.kind === "plateau") lanes.plateau.next = asked;
     else nearness = { asked, work: nearnessOf(asked) };
   } catch (error) {
     fail("key" in asked ? asked.key : "", error);
@@ -47,26 +67,7 @@ function later(): void {
 
 /** A little work; true where there is more. */
 function turn(): boolean {
-  if (count !== null) {
-    const asked = count;
-    count = null;
-    answer(asked.key, () => {
-      const { kept, seconds } = runSift(inputOf(asked.recipe), { now: () => performance.now() });
-      return { kind: "count", key: asked.key, kept: kept.length, seconds };
-    });
-    return true;
-  }
-  if (plateau !== null) {
-    const asked = plateau;
-    plateau = null;
-    answer(asked.key, () => {
-      const started = performance.now();
-      const { rmsdTolerances, energyFactors } = asked;
-      const counts = countAgainstTolerance({ ...inputOf(asked.recipe), rmsdTolerances, energyFactors });
-      return { kind: "plateau", key: asked.key, counts, seconds: (performance.now() - started) / 1000 };
-    });
-    return true;
-  }
+  if (advance(lanes.count, beginCount) || advance(lanes.plateau, beginPlateau)) return true;
   if (nearness !== null) {
     const { asked, work } = nearness;
     const until = performance.now() + SLICE_MS;
@@ -81,10 +82,67 @@ function turn(): boolean {
   return false;
 }
 
+/** A slice of what is counted in a lane; false where there is nothing to count. */
+function advance<Kind extends "count" | "plateau">(lane: Lane<Kind>, begin: (asked: Asked<Kind>) => Work) {
+  const { next } = lane;
+  if (lane.work !== null && next !== null) {
+    const { spentMs, run } = lane.work;
+    if (spentMs > PATIENCE_MS && run.done < 0.5) lane.work = null;
+  }
+  if (lane.work === null && next === null) return false;
+  const key = lane.work?.key ?? (next as { key: string } | null)?.key ?? "";
+  try {
+    const from = performance.now();
+    if (lane.work === null && next !== null) {
+      lane.next = null;
+      lane.work = begin(next);
+    }
+    const { work } = lane;
+    if (work === null) return false;
+    let more = true;
+    while (more && performance.now() < from + SLICE_MS) more = work.run.next();
+    work.spentMs += performance.now() - from;
+    if (!more) {
+      lane.work = null;
+      tell(work.answer(work.spentMs / 1000));
+    }
+  } catch (error) {
+    lane.work = null;
+    fail(key, error);
+  }
+  return true;
+}
+
+function beginCount({ key, recipe }: Asked<"count">): Work {
+  const { atoms, symmetry, mirror } = recipe;
+  const input = { ...inputOf(recipe), atoms, symmetry, mirror };
+  // What is remembered of pairs does not hang on the tolerances.
+  const of = JSON.stringify([atoms, symmetry, mirror, input.energies === null]);
+  if (counter?.key !== of) counter = { key: of, counter: new ToleranceCounter(input) };
+  const run = counter.counter.begin(recipe);
+  return {
+    key,
+    run,
+    spentMs: 0,
+    answer: (seconds) => ({ kind: "count", key, recipe, kept: run.kept, seconds }),
+  };
+}
+
+function beginPlateau({ key, recipe, rmsdTolerances, energyFactors }: Asked<"plateau">): Work {
+  const run = beginCounts({ ...inputOf(recipe), rmsdTolerances, energyFactors });
+  return {
+    key,
+    run,
+    spentMs: 0,
+    answer: (seconds) => ({ kind: "plateau", key, counts: run.result, seconds }),
+  };
+}
+
 function open(asked: Asked<"open">): void {
   data = unpackAccepted(asked.bytes);
   graph = makeGraph(data.elements, data.bonds, data.isotopes);
   kcalPerUnit = asked.kcalPerUnit;
+  counter = null;
 }
 
 function inputOf(recipe: SiftRecipe) {

@@ -31,7 +31,7 @@ test.describe("where the tolerance stands", () => {
     const slider = page.getByRole("slider", { name: "RMSD tolerance" });
     await slider.focus();
     for (let k = 0; k < 6; k++) await page.keyboard.down("PageUp");
-    await expect(page.getByText(/shapes? with these settings/)).toBeVisible();
+    await expect(page.getByText(/shapes? at 0\.\d+ Å/)).toBeVisible();
   });
 
   test("pairs nearest to the cut are laid over each other", async ({ page }) => {

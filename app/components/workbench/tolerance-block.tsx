@@ -2,11 +2,13 @@ import { useMemo } from "react";
 import { Button } from "~/components/ui/button";
 import { TextButton } from "~/components/ui/text-link";
 import { plateauKey, recipeKey, useWholeEnsemble, type WholeEnsemble } from "~/hooks/use-whole-ensemble";
+import type { CountAnswer } from "~/hooks/whole-ensemble-protocol";
 import { DomainError } from "~/lib/errors";
-import { formatBytes, formatSeconds, plural, withUnit } from "~/lib/format";
+import { fixed, formatBytes, formatSeconds, plural, withUnit } from "~/lib/format";
 import type { SiftRecipe, SiftRequest } from "~/lib/recipe/recipe";
 import { resolveRecipe } from "~/lib/recipe/resolve";
 import type { EnsembleView } from "~/lib/views";
+import { joinWords } from "~/lib/workbench/findings";
 import { nearnessHistogram } from "~/lib/workbench/nearness";
 import { countedTolerances, plateauSentence } from "~/lib/workbench/plateau";
 import { NearestPairs, NearestToSelected } from "./near-cut";
@@ -69,20 +71,16 @@ export function ToleranceBlock({
   );
   if (sift === null || result === null || live === null) return null;
   const isShown = recipeKey(live) === recipeKey(sift.recipe);
+  // The newest count: of the settings as they stand, or of those of a moment ago while the thumb moves.
+  const counted = whole.count !== null && sameButTolerances(whole.count.recipe, live) ? whole.count : null;
   const here = isShown
     ? { tolerance: live.rmsdTolerance, count: result.kept.length }
-    : whole.count?.key === recipeKey(live)
-      ? { tolerance: live.rmsdTolerance, count: whole.count.kept }
+    : counted !== null
+      ? { tolerance: counted.recipe.rmsdTolerance, count: counted.kept }
       : null;
   return (
     <>
-      <LiveLine
-        here={here}
-        isShown={isShown}
-        seconds={whole.count?.seconds ?? null}
-        whole={whole}
-        onBack={onBack}
-      />
+      <LiveLine counted={counted} live={live} isShown={isShown} whole={whole} onBack={onBack} />
       <p className="mt-4 hidden text-xs text-ink-3 noscript:block">
         How the count hangs on the tolerance is counted in the browser and needs script.
       </p>
@@ -134,17 +132,41 @@ function plateauNote(
   return `${sentence ?? ""}${lines} ${counted}${bound}`.trim();
 }
 
+/** True where two recipes differ in the tolerances and the window alone, which sliders move. */
+function sameButTolerances(a: SiftRecipe, b: SiftRecipe): boolean {
+  const fixedPart = (recipe: SiftRecipe) =>
+    recipeKey({ ...recipe, rmsdTolerance: 0, energyTolerance: null, window: null });
+  return fixedPart(a) === fixedPart(b);
+}
+
+/** "0.120 Å", with what else a slider moved since. */
+function countedAt(counted: SiftRecipe, live: SiftRecipe): string {
+  const parts = [withUnit(fixed(counted.rmsdTolerance, 3), "Å")];
+  if (counted.energyTolerance !== live.energyTolerance)
+    parts.push(
+      counted.energyTolerance === null
+        ? "no energy tolerance"
+        : withUnit(fixed(counted.energyTolerance, 3), "kcal/mol"),
+    );
+  if (counted.window !== live.window)
+    parts.push(
+      counted.window === null ? "no window" : `a window of ${withUnit(fixed(counted.window, 1), "kcal/mol")}`,
+    );
+  return joinWords(parts);
+}
+
 /** The count as the slider stands, in words, before the set that is shown has followed. */
 function LiveLine({
-  here,
+  counted,
+  live,
   isShown,
-  seconds,
   whole,
   onBack,
 }: {
-  here: { tolerance: number; count: number } | null;
+  /** Newest count, perhaps of the settings of a moment ago; null: none yet. */
+  counted: CountAnswer | null;
+  live: SiftRecipe;
   isShown: boolean;
-  seconds: number | null;
   whole: WholeEnsemble;
   onBack: (() => void) | null;
 }) {
@@ -153,9 +175,11 @@ function LiveLine({
     <p className="figures mt-1 min-h-5 text-ink-2" aria-live="polite">
       {isShown || whole.state !== "ready"
         ? null
-        : here === null
+        : counted === null
           ? "Counting with the new settings."
-          : `${plural(here.count, "shape")} with these settings${seconds === null ? "" : `, counted in ${formatSeconds(Math.max(0.01, seconds))}`}${after}`}
+          : counted.key === recipeKey(live)
+            ? `${plural(counted.kept, "shape")} at ${withUnit(fixed(live.rmsdTolerance, 3), "Å")}, counted in ${formatSeconds(Math.max(0.01, counted.seconds))}${after}`
+            : `${plural(counted.kept, "shape")} at ${countedAt(counted.recipe, live)}; counting on.`}{" "}
       {isShown || onBack === null ? null : <TextButton onClick={onBack}>Back to its settings</TextButton>}
     </p>
   );

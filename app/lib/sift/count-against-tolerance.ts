@@ -56,11 +56,16 @@ export interface ToleranceInput {
  * @example countAgainstTolerance({ graph, block, numbers, energies, recipe, rmsdTolerances: [0.1, 0.2, 0.4] }).counts[0]
  */
 export function countAgainstTolerance(input: ToleranceInput, hooks: SiftHooks = {}): ToleranceCounts {
+  return beginCounts(input, hooks).run();
+}
+
+/** The same, to be gone through in parts: `next` until it is false, then `result`. */
+export function beginCounts(input: ToleranceInput, hooks: SiftHooks = {}): ToleranceWalk {
   const rmsdTolerances = rising(input.rmsdTolerances, MAX_TOLERANCES, "RMSD tolerances");
   const withEnergy = input.energies !== null && input.recipe.energyTolerance !== null;
   const asked = rising(input.energyFactors ?? [1], MAX_FACTORS, "energy factors");
   const energyFactors = withEnergy ? asked : [1];
-  return new ToleranceWalk(input, rmsdTolerances, energyFactors, hooks).run();
+  return new ToleranceWalk(input, rmsdTolerances, energyFactors, hooks);
 }
 
 function rising(values: readonly number[], most: number, what: string): number[] {
@@ -72,7 +77,7 @@ function rising(values: readonly number[], most: number, what: string): number[]
 }
 
 /** Sifts at `factors` x `tolerances`. A set of tolerances is a number, bit t for tolerance t. */
-class ToleranceWalk {
+export class ToleranceWalk {
   private readonly walk: Walk;
   private readonly comparer: SymmetricRmsd;
   private readonly store: ShapeStore;
@@ -91,6 +96,8 @@ class ToleranceWalk {
   private readonly open: number[];
   private readonly counts: number[][];
   private exact: boolean;
+  private step = 0;
+  private shown = -1;
 
   constructor(
     private readonly input: ToleranceInput,
@@ -119,16 +126,32 @@ class ToleranceWalk {
   }
 
   run(): ToleranceCounts {
-    const { rows } = this.walk;
-    let shown = -1;
-    for (let step = 0; step < rows.length; step++) {
-      this.look();
-      const percent = Math.floor((100 * step) / rows.length);
-      if (percent !== shown) this.hooks.progress?.(step / rows.length);
-      shown = percent;
-      this.take(rows[step]!, step);
-    }
+    while (this.next());
     this.hooks.progress?.(1);
+    return this.result;
+  }
+
+  /** Takes the next frame; false where there is none left. */
+  next(): boolean {
+    const { rows } = this.walk;
+    const { step } = this;
+    if (step >= rows.length) return false;
+    this.look();
+    const percent = Math.floor((100 * step) / rows.length);
+    if (percent !== this.shown) this.hooks.progress?.(step / rows.length);
+    this.shown = percent;
+    this.take(rows[step]!, step);
+    this.step = step + 1;
+    return true;
+  }
+
+  /** 0 to 1. */
+  get done(): number {
+    return this.walk.rows.length === 0 ? 1 : this.step / this.walk.rows.length;
+  }
+
+  /** What was counted so far. */
+  get result(): ToleranceCounts {
     return {
       rmsdTolerances: this.tolerances,
       energyFactors: this.factors,
