@@ -285,7 +285,9 @@ describe("requests", () => {
     expect(await unreadable.json()).toMatchObject({ status: 400, detail: "This address cannot be read." });
     const end = "Host: a\r\nConnection: close\r\n\r\n";
     const trace = await told(`TRACE /api/v1/ensembles HTTP/1.1\r\n${end}`);
-    expect(trace).toMatch(/^HTTP\/1\.1 405 [\s\S]*allow: GET, HEAD, POST[\s\S]*problem\+json[\s\S]*"status":405/i);
+    expect(trace).toMatch(
+      /^HTTP\/1\.1 405 [\s\S]*allow: GET, HEAD, POST[\s\S]*problem\+json[\s\S]*"status":405/i,
+    );
     expect(await told(`BREW /api/v1 HTTP/1.1\r\n${end}`)).toMatch(/^HTTP\/1\.1 400 [\s\S]*"status":400/);
     const long = await told(`GET /api/v1/${"a".repeat(20_000)} HTTP/1.1\r\n${end}`);
     expect(long).toMatch(/^HTTP\/1\.1 431 [\s\S]*nosniff[\s\S]*problem\+json[\s\S]*16 kB/);

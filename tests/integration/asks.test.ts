@@ -249,6 +249,15 @@ describe("X13, another order of atoms", () => {
     const path = `/ensembles/${taken.id}/frames/3/release`;
     const { intake: released } = await (await post(token, path, { reason: "looked at" })).json();
     expect(released).toMatchObject({ accepted: 3, held: 1, questions: [{ id: "order" }] });
+    const both = [
+      { id: "order", option: "map" },
+      { id: "order", option: "hold" },
+    ];
+    const twice = await post(token, `/ensembles/${taken.id}/answers`, { answers: both });
+    expect([twice.status, (await twice.json()).detail]).toEqual([
+      422,
+      expect.stringContaining("two options"),
+    ]);
     // The rest stays held, and the released one stays released, read again or not.
     const intake = await answer(taken.id, { order: "hold" });
     expect(intake).toMatchObject({ accepted: 3, held: 1, questions: [] });

@@ -106,6 +106,18 @@ describe("POST /ensembles/:id/files", () => {
     expect((doubles[42] ?? 0) - (doubles[0] ?? 0)).toBeCloseTo(0.3, 10);
   });
 
+  it("without energies names each of its frames", async () => {
+    const taken = await takenIn(token, [{ name: "a.xyz", content: butane("-1.5 bare") }], fields);
+    const content = butane("no number", 0.1) + butane("none here", 0.2);
+    const { intake } = await added(taken.id, [{ name: "b.xyz", content }]);
+    const missing = intake.messages.filter(({ code }: { code: string }) => code === "E10");
+    expect(missing.map(({ frame, line }: { frame: number; line: number }) => [frame, line])).toEqual([
+      [2, 2],
+      [3, 18],
+    ]);
+    expect(intake.remarked).toBe(2);
+  });
+
   it("answers the same bytes with 200 and adds nothing, those of the first upload too", async () => {
     const one = { name: "a.xyz", content: butane("-1.5 same") };
     const two = { name: "b.xyz", content: butane("-1.4 same", 0.1) };

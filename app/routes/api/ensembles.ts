@@ -1,4 +1,5 @@
 import { type EnsembleAnswer, ensembleListQuerySchema, type Warnings } from "~/lib/api/schemas";
+import { hasSteeringCharacters, quoteFound } from "~/lib/text/escape";
 import type { Actor } from "~/services/auth/access.server";
 import { accessTeam } from "~/services/auth/access.server";
 import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
@@ -19,6 +20,13 @@ function withWarnings(ensemble: EnsembleAnswer, warnings: Warnings): EnsembleAns
   return warnings.length === 0 ? ensemble : { ...ensemble, warnings };
 }
 
+/** A name is kept as it was sent; what of it steers a screen is told (row G13). */
+function steeringName(name: string): Warnings {
+  if (!hasSteeringCharacters(name)) return [];
+  const message = `The name holds control or text-direction characters, here written out: ${quoteFound(name)}`;
+  return [{ code: "G13", message }];
+}
+
 const answer = answerCall({
   async GET({ actor, url }) {
     const { teamId } = await accessTeam(actor, "read", teamOf(actor));
@@ -28,7 +36,8 @@ const answer = answerCall({
     const { teamId } = await accessTeam(actor, "take-in", teamOf(actor));
     const form = openForm({ body: request.body, contentType: request.headers.get("content-type") });
     const { ensembleId, created, warnings = [] } = await takeIn({ actor, form });
-    return json(withWarnings(await describeEnsemble(teamId, ensembleId), warnings), {
+    const ensemble = await describeEnsemble(teamId, ensembleId);
+    return json(withWarnings(ensemble, [...warnings, ...steeringName(ensemble.name)]), {
       status: created ? 201 : 200,
       location: `/api/v1/ensembles/${ensembleId}`,
     });

@@ -136,11 +136,25 @@ export async function answerQuestions(options: {
   answers: readonly Answer[];
 }): Promise<void> {
   const at = await accessEnsemble(options.actor, "take-in", options.ensembleId);
+  refuseTwoOptions(options.answers);
   const given = await readingAnswers(at, options.answers);
   const energies = options.answers.filter(({ id }) => readAskId(id) === null);
   if (energies.length > 0) await inTransaction((tx) => answerAll(tx, at, energies));
   await answerReading(at, given);
   await siftAfterIntake(at);
+}
+
+function refuseTwoOptions(answers: readonly Answer[]): void {
+  const given = new Map<string, string>();
+  for (const { id, option } of answers) {
+    const other = given.get(id);
+    if (other !== undefined && other !== option) {
+      throw invalid(
+        `The question "${id}" has two options in this call, "${other}" and "${option}". Send one.`,
+      );
+    }
+    given.set(id, option);
+  }
 }
 
 /** Answers about the reading of the files, checked before any of the call is taken up; those given before are left out. */

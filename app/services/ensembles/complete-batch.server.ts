@@ -123,7 +123,7 @@ export async function completeBatch(
     frames: ensemble.frames + result.frames,
     accepted,
   });
-  const messages = [...settled.messages, ...batchRemarks(decision.kind, findings, result, level)];
+  const messages = [...settled.messages, ...batchRemarks(decision.kind, findings, result, level, accepted)];
   await remarkFrames(db, reading.ensembleId, messages);
   result.messages.addAll(messages);
   await insertMessages(db, reading.ensembleId, listed(result, accepted));
@@ -137,17 +137,20 @@ function batchRemarks(
   findings: EnergyFindings,
   result: ReadResult,
   level: OwnLevel | null,
+  accepted: (frame: number) => boolean,
 ): IntakeMessage[] {
   const file = result.files[0]?.name ?? "";
   if (kind === "column") return relativeZeros({ lowest: findings.chosen?.min ?? null, file }, level);
   if (level === null) return [];
-  return [
-    {
+  return findings.rows
+    .filter(({ frame }) => accepted(frame))
+    .map(({ frame, file: own, line, textLine }) => ({
       code: "E10",
       severity: "remark",
-      file,
-      message: `These files hold no energy: their frames have none at “${level.name}”.`,
-      hint: "They get no population; values can be added later with a table.",
-    },
-  ];
+      file: own,
+      frame,
+      line: textLine ?? line + 1,
+      message: `The frame has no energy at “${level.name}”.`,
+      hint: "It is accepted but gets no population; a value can be added later with a table.",
+    }));
 }

@@ -2,6 +2,7 @@ import { and, count, eq, isNull, ne } from "drizzle-orm";
 import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
 import { ensembles, frames, intakeMessages, questions } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { HOLD } from "../../lib/intake/reading-choices.ts";
 import { readAskId } from "../../lib/intake/reading-questions.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { FrameState } from "../../lib/intake/report.ts";
@@ -13,7 +14,7 @@ import { countFrames } from "./intake-rows.server.ts";
 import { findQuestions } from "./load-intake.server.ts";
 import { refreshChirality } from "./refresh-chirality.server.ts";
 
-/** How a question was answered that has no proposal: frame by frame. */
+/** How a question was answered that has no other option than to hold: frame by frame. */
 const RELEASED = "released";
 
 type At = Grant & { ensembleId: string };
@@ -134,7 +135,8 @@ async function settleWaiting(tx: Transaction, at: At, number: number): Promise<v
   const open = (await findQuestions(at.ensembleId, tx)).filter(({ answered }) => answered === undefined);
   const settled = open.filter(({ id }) => (readAskId(id)?.ask ?? "group") !== "group");
   for (const question of settled) {
-    const option = question.options.find(({ proposed }) => proposed)?.id ?? RELEASED;
+    const ways = question.options.filter(({ id }) => id !== HOLD);
+    const option = (ways.find(({ proposed }) => proposed) ?? ways[0])?.id ?? RELEASED;
     await tx
       .update(questions)
       .set({ answered: option, answeredBy: at.userId, answeredAt: new Date() })
