@@ -98,7 +98,8 @@ export function useWholeEnsemble(
   const liveKey = live === null ? null : recipeKey(live);
   // biome-ignore lint/correctness/useExhaustiveDependencies: the key names the recipe
   useEffect(() => {
-    if (ready && live !== null && liveKey !== null && (shown === null || liveKey !== recipeKey(shown.recipe)))
+    // Also where that is the sift shown: the first move of a thumb then meets a thread that has its code and pairs ready.
+    if (ready && live !== null && liveKey !== null)
       threads.ask("live", { kind: "count", key: liveKey, recipe: live });
   }, [ready, liveKey, threads]);
 

@@ -15,13 +15,15 @@ export type UploadEnd =
   | { kind: "failed" };
 
 /**
- * Sends files as one multipart form. XMLHttpRequest, since fetch tells nothing of the bytes that left.
+ * Sends files as one multipart form. XMLHttpRequest, since fetch tells nothing of the bytes that left. Meanwhile it asks
+ * how many frames were read.
  *
  * @returns a way to stop it; nothing is called after that
  */
 export function sendUpload(
   form: UploadForm,
   onProgress: (sent: number) => void,
+  onFrames: (frames: number) => void,
   onEnd: (end: UploadEnd) => void,
 ): () => void {
   const body = new FormData();
@@ -32,11 +34,36 @@ export function sendUpload(
   const request = new XMLHttpRequest();
   request.open("POST", form.action);
   request.setRequestHeader("Accept", "application/json");
+  const key = newKey();
+  request.setRequestHeader("Upload-Key", key);
+  const asking = setInterval(() => void askFrames(key, onFrames), FRAMES_EVERY_MS);
+  request.addEventListener("loadend", () => clearInterval(asking));
   request.upload.addEventListener("progress", (event) => onProgress(event.loaded));
   request.addEventListener("error", () => onEnd({ kind: "failed" }));
   request.addEventListener("load", () => onEnd(readAnswer(request.status, request.responseText)));
   request.send(body);
   return () => request.abort();
+}
+
+/** How often the frames are asked for. */
+const FRAMES_EVERY_MS = 400;
+
+/** 32 digits by chance; `crypto.randomUUID` is missing where the page came without https from another host. */
+function newKey(): string {
+  const bytes = crypto.getRandomValues(new Uint8Array(16));
+  return Array.from(bytes, (byte) => byte.toString(16).padStart(2, "0")).join("");
+}
+
+/** Nothing is told before the first file arrives, and after the last answer. */
+async function askFrames(key: string, onFrames: (frames: number) => void): Promise<void> {
+  try {
+    const answer = await fetch(`/files/upload?key=${key}`, { headers: { accept: "application/json" } });
+    if (!answer.ok) return;
+    const { frames } = (await answer.json()) as { frames: number };
+    onFrames(frames);
+  } catch {
+    // The upload itself says when the connection is lost.
+  }
 }
 
 /** The server's answer as the row shows it; anything that is neither an ensemble nor a problem counts as a lost connection. */

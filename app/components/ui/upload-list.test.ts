@@ -48,6 +48,14 @@ describe("uploadList", () => {
     });
     expect(sending[0]?.state).toBe("sending");
     expect(uploadWords(only(sending))).toBe("14\u00a0MB of 23\u00a0MB, about 6\u00a0s left");
+    const counted = uploadList(uploadList(sending, { type: "frames", id: 1, frames: 4312 }), {
+      type: "frames",
+      id: 1,
+      frames: 4000,
+    });
+    expect(uploadWords(only(counted))).toBe(
+      "14\u00a0MB of 23\u00a0MB, 4,312 frames read so far, about 6\u00a0s left",
+    );
     const reading = uploadList(sending, { type: "progress", id: 1, sent: 23 * MB + 512, now: 20_000 });
     expect(reading[0]).toMatchObject({ state: "reading", sent: 23 * MB });
     const done = uploadList(reading, { type: "taken", id: 1, taken });

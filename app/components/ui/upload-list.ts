@@ -32,6 +32,8 @@ export interface Upload {
   names: readonly string[];
   bytes: number;
   sent: number;
+  /** Frames read so far; null before the first answer. */
+  frames: number | null;
   state: UploadState;
   /** ms, when the first byte left. */
   startedAt: number | null;
@@ -45,6 +47,7 @@ export type UploadAction =
   | { type: "add"; id: number; names: readonly string[]; bytes: number }
   | { type: "start"; id: number; now: number }
   | { type: "progress"; id: number; sent: number; now: number }
+  | { type: "frames"; id: number; frames: number }
   | { type: "taken"; id: number; taken: Taken }
   | { type: "refused"; id: number; refusal: Refusal }
   | { type: "failed"; id: number }
@@ -66,6 +69,13 @@ export function uploadList(list: readonly Upload[], action: UploadAction): reado
     case "progress":
       return list.map((upload) =>
         upload.id === action.id ? advance(upload, action.sent, action.now) : upload,
+      );
+    case "frames":
+      // Answers may overtake each other.
+      return list.map((upload) =>
+        upload.id === action.id && LIVE.includes(upload.state)
+          ? { ...upload, frames: Math.max(action.frames, upload.frames ?? 0) }
+          : upload,
       );
     case "taken":
       return change(list, action.id, LIVE, { state: "done", taken: action.taken });
@@ -94,6 +104,7 @@ function fresh(id: number, names: readonly string[], bytes: number): Upload {
     names,
     bytes,
     sent: 0,
+    frames: null,
     state: "waiting",
     startedAt: null,
     now: null,
@@ -148,11 +159,11 @@ export function uploadWords(upload: Upload): string {
       return `${formatBytes(upload.bytes)}, waits for the one before`;
     case "sending": {
       const left = secondsLeft(upload);
-      const amount = `${formatBytes(upload.sent)} of ${formatBytes(upload.bytes)}`;
+      const amount = `${formatBytes(upload.sent)} of ${formatBytes(upload.bytes)}${framesWords(upload)}`;
       return left === null ? amount : `${amount}, about ${spanLeft(left)} left`;
     }
     case "reading":
-      return `${formatBytes(upload.bytes)} sent; every frame is being read`;
+      return `${formatBytes(upload.bytes)} sent; every frame is being read${framesWords(upload)}`;
     case "done":
       return upload.taken ? takenWords(upload.taken) : "Read";
     case "cancelled":
@@ -165,6 +176,11 @@ export function uploadWords(upload: Upload): string {
     case "refused":
       return upload.refusal?.detail ?? "Nothing was kept.";
   }
+}
+
+/** ", 4,312 frames read so far" */
+function framesWords({ frames }: Upload): string {
+  return frames ? `, ${plural(frames, "frame")} read so far` : "";
 }
 
 function takenWords(taken: Taken): string {

@@ -31,6 +31,7 @@ export function useUploads(onTaken: (taken: Taken) => void) {
     const stop = sendUpload(
       form,
       (sent) => dispatch({ type: "progress", id, sent, now: performance.now() }),
+      (frames) => dispatch({ type: "frames", id, frames }),
       (end) => {
         stops.current.delete(id);
         if (end.kind === "taken") {

@@ -13,6 +13,7 @@ import { type BatchPlace, countFiles, optionsAt } from "./batch-place.server.ts"
 import { checkSameBatch, ensureFirstBatch, findSameBatch } from "./batches.server.ts";
 import { type CompletedBatch, completeBatch, numberOf, ownLevel } from "./complete-batch.server.ts";
 import { bondTableOf, type WrittenAnswers } from "./complete-reading.server.ts";
+import type { FramesTold } from "./frames-read.server.ts";
 import { countFrames } from "./intake-rows.server.ts";
 import { findQuestions } from "./load-intake.server.ts";
 import { mergeBatch } from "./merge-batch.server.ts";
@@ -205,6 +206,8 @@ export async function appendFiles(options: {
   actor: Actor;
   ensembleId: string;
   form: FormReader;
+  /** Told of the frames read so far. */
+  told?: FramesTold;
 }): Promise<Appended> {
   const { form } = options;
   const fields = new FormFields(batchFieldsSchema);
@@ -224,7 +227,8 @@ export async function appendFiles(options: {
       if (upload === null || place === null) {
         place = await findPlace(at);
         const level = await ownLevel(place.ensemble, fields.get("level"));
-        upload = new Upload(at, optionsAt(place, numberOf(fields.get("energyFrom"), level)));
+        const reading = optionsAt(place, numberOf(fields.get("energyFrom"), level));
+        upload = new Upload(at, { ...reading, told: options.told });
         await upload.begin();
       }
       await upload.readFile(part);

@@ -39,6 +39,7 @@ import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
 import { BlockWriter } from "./block-writer.server.ts";
 import { checkFormat } from "./check-format.ts";
 import { type FrameDecision, FrameWriter, writeDecisions } from "./frame-writer.server.ts";
+import type { FramesTold } from "./frames-read.server.ts";
 import { keptOpen, type OpenedFile, openFile, refusalOfPacked, tooManyBytes } from "./open-file.server.ts";
 import { isZip, shownName, ZipArchive, type ZipEntry } from "./zip-archive.server.ts";
 
@@ -83,6 +84,8 @@ export interface ReadingOptions {
   choices?: ReadingChoices;
   /** Frames that a person released while they waited: read as proposed, whatever was answered for the others. */
   settled?: ReadonlySet<number>;
+  /** Told now and then of the frames of these files read so far. */
+  told?: FramesTold;
 }
 
 /** Frames, molecule and messages of an upload, once all its files are read. */
@@ -350,6 +353,7 @@ export class Reading {
 
   private async takeAll(file: number, found: XyzFrame[]): Promise<void> {
     for (const frame of found) await this.take(file, frame);
+    if (found.length > 0) this.options.told?.(this.frames);
     if (performance.now() - this.breath < BREATH_MS) return;
     await breathe();
     this.breath = performance.now();

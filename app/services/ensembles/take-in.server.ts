@@ -2,6 +2,7 @@ import { uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { type Actor, accessTeam, type Grant } from "../auth/access.server.ts";
 import { tellOfIntake } from "../mail/long-work.server.ts";
 import { finishUpload, type TakenIn } from "./finish-upload.server.ts";
+import type { FramesTold } from "./frames-read.server.ts";
 import type { FormReader } from "./read-multipart.server.ts";
 import { Upload } from "./upload.server.ts";
 import { FormFields, invalidField } from "./upload-fields.ts";
@@ -19,8 +20,9 @@ export async function takeInFor(options: {
   grantOf(team: string | null): Promise<Grant>;
   form: FormReader;
   interactive: boolean;
+  told?: FramesTold;
 }): Promise<TakenIn> {
-  const { grantOf, form, interactive } = options;
+  const { grantOf, form, interactive, told } = options;
   const fields = new FormFields(uploadFieldsSchema, interactive ? ["team"] : []);
   let upload: Upload | null = null;
   let grant: Grant | null = null;
@@ -35,7 +37,7 @@ export async function takeInFor(options: {
         throw invalidField(part.name, `There is no field "${part.name}". Files go into "file".`);
       grant ??= await grantOf(fields.get("team"));
       if (upload === null) {
-        upload = new Upload(grant, { energyFrom: fields.get("energyFrom") });
+        upload = new Upload(grant, { energyFrom: fields.get("energyFrom"), told });
         await upload.begin();
       }
       await upload.readFile(part);
@@ -57,12 +59,13 @@ export async function takeInFor(options: {
 }
 
 /** Takes files in as a token, into its one team, or as a person, into the team that the form names. */
-export function takeIn(options: { actor: Actor; form: FormReader }): Promise<TakenIn> {
-  const { actor, form } = options;
+export function takeIn(options: { actor: Actor; form: FormReader; told?: FramesTold }): Promise<TakenIn> {
+  const { actor, form, told } = options;
   const own = actor.kind === "token" ? actor.teamId : null;
   return takeInFor({
     grantOf: (team) => accessTeam(actor, "take-in", own ?? team ?? ""),
     form,
     interactive: own === null,
+    told,
   });
 }
