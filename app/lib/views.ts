@@ -28,6 +28,8 @@ export interface FileView {
   archive: string | null;
   /** Which upload or search brought it, from 1. */
   batch: number;
+  /** What that search is called by its people; absent where nobody said, or where it does not matter. */
+  batchName?: string;
   format: string;
   sha256: string;
   bytes: number;

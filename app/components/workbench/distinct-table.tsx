@@ -277,11 +277,6 @@ function KeptRow({
             <span className="w-18 shrink-0 text-right max-sm:w-9 max-[24rem]:w-auto max-[24rem]:shrink">
               <span className={MID}>found </span>
               {row.found}×
-              {row.foundIn ? (
-                <span className="block text-xs whitespace-nowrap text-ink-3 max-sm:whitespace-normal">
-                  {row.foundIn}
-                </span>
-              ) : null}
             </span>
             <svg
               aria-hidden="true"
@@ -298,6 +293,7 @@ function KeptRow({
               />
             </svg>
           </span>
+          {row.foundIn ? <span className="block text-xs text-ink-3">{row.foundIn}</span> : null}
         </Td>
       </Tr>
       {open ? (

@@ -22,6 +22,7 @@ export function FilePanel() {
               {file.format.toUpperCase()}, {plural(file.frames, "frame")}
               {ensemble.files.length > 1 ? ` from ${file.firstFrame}` : ""}
               {file.batch > 1 ? `, batch ${file.batch}` : ""}
+              {file.batchName ? ` “${file.batchName}”` : ""}
               {file.archive ? `, out of ${file.archive}` : ""}
             </p>
             <p className="flex flex-wrap items-center gap-x-4 gap-y-1 text-xs text-ink-3">

@@ -64,8 +64,14 @@ function distinctNames(names: readonly string[]): string[] {
   });
 }
 
+/** Which search found a conformer how often: "batch 1: 3; batch 2: 1". */
+function foundInCell({ foundIn }: ExportSet["conformers"][number]): string {
+  return textCell(foundIn?.map(({ batch, found }) => `batch ${batch}: ${found}`).join("; ") ?? "");
+}
+
 /**
- * The distinct set as CSV, one line a string: the fixed columns, then one a quantity with its unit in the header.
+ * The distinct set as CSV, one line a string: the fixed columns, then one a quantity with its unit in the header, then
+ * `foundIn` where the frames came from several searches.
  *
  * @throws RangeError on a column of another length
  * @example [...writeCsv(set, [{ name: "Rg", unit: "Å", values: [3.1, 3.4] }])][0]
@@ -81,7 +87,8 @@ export function* writeCsv(
     }
   }
   const headers = columns.map(({ name, unit }) => (unit === null ? name : `${name} [${unit}]`));
-  yield distinctNames([...FIXED, ...headers])
+  const several = set.conformers.some(({ foundIn }) => foundIn !== undefined);
+  yield distinctNames([...FIXED, ...headers, ...(several ? ["foundIn"] : [])])
     .map(textCell)
     .join(",") + LINE_END;
   for (const [k, conformer] of set.conformers.entries()) {
@@ -95,6 +102,7 @@ export function* writeCsv(
       numberCell(conformer.found),
       numberCell(conformer.population),
       ...columns.map(({ values }) => numberCell(values[k] ?? null)),
+      ...(several ? [foundInCell(conformer)] : []),
     ];
     yield cells.join(",") + LINE_END;
   }

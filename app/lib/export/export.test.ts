@@ -177,6 +177,23 @@ describe("CSV", () => {
     ]);
   });
 
+  test("says which search found a conformer how often, where there were several", () => {
+    const found = [
+      { batch: 1, found: 3 },
+      { batch: 2, found: 1 },
+    ];
+    const set = setOf([
+      conformer(1, { foundIn: found }),
+      conformer(2, { foundIn: [{ batch: 2, found: 1 }] }),
+    ]);
+    const rows = parseCsv([...writeCsv(set, [{ name: "foundIn", unit: null, values: [1, 2] }])].join(""));
+    expect(rows.map((row) => row.slice(-2))).toEqual([
+      ["foundIn", "foundIn (2)"],
+      ["1", "batch 1: 3; batch 2: 1"],
+      ["2", "batch 2: 1"],
+    ]);
+  });
+
   test("any text reads back, and none begins as a formula (security E08)", () => {
     const spicy = fc.string({ unit: fc.constantFrom(..."=+-@\t\r\n\0'\",;a1 "), maxLength: 12 });
     fc.assert(

@@ -1,6 +1,6 @@
 import { and, asc, eq, isNull } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
-import { ensembleFiles, ensembles, series, sources, teams } from "../../db/schema.server.ts";
+import { batches, ensembleFiles, ensembles, series, sources, teams } from "../../db/schema.server.ts";
 import { looksLikeLevel } from "../../lib/columns-view.ts";
 import type { Graph } from "../../lib/structure.ts";
 import type { EnsembleView, FileView } from "../../lib/views.ts";
@@ -37,6 +37,22 @@ export async function findFiles(ensembleId: string): Promise<FileView[]> {
   }));
 }
 
+/** Files with the names of the searches that brought them, as pages show them. */
+async function findNamedFiles(ensembleId: string): Promise<FileView[]> {
+  const [files, rows] = await Promise.all([
+    findFiles(ensembleId),
+    db
+      .select({ batch: batches.batch, name: batches.name })
+      .from(batches)
+      .where(eq(batches.ensembleId, ensembleId)),
+  ]);
+  const names = new Map(rows.map(({ batch, name }) => [batch + 1, name]));
+  return files.map((file) => {
+    const name = names.get(file.batch);
+    return name ? { ...file, batchName: name } : file;
+  });
+}
+
 /** The row of a living ensemble with the names around it, bound to the team of the grant. */
 export async function findEnsembleRow(teamId: string, ensembleId: string) {
   const rows = await db
@@ -69,7 +85,7 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
   const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
   const row = await findEnsembleRow(grant.teamId, grant.ensembleId);
   const { ensemble } = row;
-  const [strip, files] = await Promise.all([frameStrip(ensemble.id), findFiles(ensemble.id)]);
+  const [strip, files] = await Promise.all([frameStrip(ensemble.id), findNamedFiles(ensemble.id)]);
   const graph = unpackMolecule(ensemble);
   const columns = await findColumns(ensemble.id, strip);
   return {

@@ -11,6 +11,7 @@ import type { KeptConformer, SiftResult } from "../../lib/recipe/result.ts";
 import { distinctPopulations } from "../../lib/thermo/populations.ts";
 import { ENERGY_UNITS, STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
 import { type Actor, accessSift, type Grant } from "../auth/access.server.ts";
+import { findBatchRanges, withFoundIn } from "../ensembles/batches.server.ts";
 import { findEnsembleRow, findFiles } from "../ensembles/load-ensemble.server.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
 import { ordersOf, unpackMolecule } from "../ensembles/molecule.server.ts";
@@ -84,7 +85,7 @@ async function notCurrentWords(sift: FoundSift, result: SiftResult): Promise<str
 }
 
 async function collect(grant: Grant & { ensembleId: string }, sift: FoundSift, temperature: number) {
-  const result = await needResult(sift);
+  const result = withFoundIn(await needResult(sift), await findBatchRanges(grant.ensembleId));
   const { kept } = result;
   const { ensemble } = await findEnsembleRow(grant.teamId, grant.ensembleId);
   const all = await db
