@@ -1,4 +1,4 @@
-import { useRef, useState } from "react";
+import { useMemo, useRef, useState } from "react";
 import useSWR from "swr";
 import type { SiftRequest } from "~/lib/recipe/recipe";
 import type { SiftStatus } from "~/lib/views";
@@ -11,7 +11,12 @@ interface SiftState {
   /** Pairs compared so far, while it runs. */
   pairs?: number;
   error?: string | null;
+  /** The server did not answer the last question: what is known is of before. */
+  silent?: true;
 }
+
+/** After a failure the state is asked for again this often, however long the server is away. */
+const AGAIN_MS = 2000;
 
 export function hasEnded(status: SiftStatus): boolean {
   return status === "done" || status === "failed" || status === "cancelled";
@@ -46,18 +51,23 @@ async function problemWords(response: Response): Promise<string> {
  * @param id null where there is nothing to follow
  */
 export function useRunningSift(id: string | null): SiftState | null {
-  const { data } = useSWR<SiftState, Error>(
+  const { data, error } = useSWR<SiftState, Error>(
     id === null ? null : `/files/sifts/${id}?wait=1`,
     (address: string) => askState(address),
     {
       refreshInterval: (state) => (state && hasEnded(state.status) ? 0 : 150),
       dedupingInterval: 0,
       revalidateOnFocus: false,
-      shouldRetryOnError: true,
-      errorRetryInterval: 2000,
+      // Not the library's own rule, which waits longer each time: after a restart the page would stand still for minutes.
+      onErrorRetry: (_error, _key, _config, again, { retryCount }) => {
+        setTimeout(() => void again({ retryCount }), AGAIN_MS);
+      },
     },
   );
-  return data?.id === id ? data : null;
+  return useMemo(() => {
+    if (data === undefined || data.id !== id) return null;
+    return error === undefined ? data : { ...data, silent: true };
+  }, [data, error, id]);
 }
 
 /**

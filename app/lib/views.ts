@@ -81,6 +81,8 @@ export interface SiftView {
   progress: number;
   /** Pairs compared so far, while it runs. */
   pairs?: number;
+  /** On a page alone: the server did not answer the last question about it. */
+  silent?: true;
   recipe: SiftRecipe;
   result: SiftResult | null;
   error: string | null;

@@ -80,6 +80,12 @@ function Running({ sift }: { sift: SiftView }) {
             : `Comparing ${plural(ensemble.accepted, "frame")}, ${formatPercent(sift.progress)} done${sift.pairs ? `, ${plural(sift.pairs, "pair")} so far` : ""}${left === null ? "" : `; ${formatSeconds(Math.max(1, Math.round(left)))} left`}.`}
         </p>
         <ProgressBar share={sift.progress} label="Sift" />
+        {sift.silent ? (
+          <p role="status" className="mt-2 text-held">
+            The server does not answer at the moment. The sift is not lost: it is begun again where the server
+            was interrupted, and this page goes on by itself.
+          </p>
+        ) : null}
         <p className="mt-2 hidden text-xs text-ink-3 noscript:block">
           Load the page again to see how far it is.
         </p>

@@ -67,6 +67,7 @@ function useFollowedSift(sift: SiftView | null): SiftView | null {
             status: over ? "running" : state.status,
             progress: over ? 1 : state.progress,
             ...(state.pairs === undefined ? {} : { pairs: state.pairs }),
+            ...(state.silent ? { silent: true as const } : {}),
           }
         : sift,
     [sift, runs, state, over],
