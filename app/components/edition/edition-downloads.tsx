@@ -1,11 +1,14 @@
 import { useState } from "react";
-import { linkClass, TextButton } from "~/components/ui/text-link";
+import { linkClass as onScreen, TextButton } from "~/components/ui/text-link";
 import { FILE_WORDS } from "~/lib/edition/edition-files";
 import type { EditionView } from "~/lib/edition/views";
 import { formatBytes, formatChecksum } from "~/lib/format";
 import type { EditionAddresses } from "./addresses";
 import { EditionHead } from "./edition-head";
 import { saveFigures } from "./save-figures";
+
+/** Names of files; on paper they are words, not links. */
+const linkClass = `${onScreen} print:text-ink print:no-underline`;
 
 /** Files of an edition with their checksums, then the originals where they go along. */
 export function EditionDownloads({
