@@ -17,7 +17,7 @@ export function EditionFilesBlock({ ensembleId, edition }: { ensembleId: string;
   return (
     <section className="min-w-0" aria-labelledby="edition-files-title">
       <BlockHead title={`Edition ${number}, files`} id="edition-files-title">
-        <a className={`text-xs ${linkClass}`} href={to("bundle.zip")} download>
+        <a className={`text-xs print:hidden ${linkClass}`} href={to("bundle.zip")} download>
           Bundle, zip
         </a>
       </BlockHead>
@@ -28,7 +28,7 @@ export function EditionFilesBlock({ ensembleId, edition }: { ensembleId: string;
             className="figures grid grid-cols-[minmax(0,1fr)_4.5rem_1rem] items-center gap-x-3 border-b border-rule py-2 sm:grid-cols-[minmax(0,1fr)_4.5rem_9rem_1rem]"
           >
             <span className="min-w-0">
-              <a className={linkClass} href={to(name)} download>
+              <a className={`${linkClass} print:text-ink print:no-underline`} href={to(name)} download>
                 {name}
               </a>
               <span className="block text-xs text-ink-3">{FILE_WORDS[name]?.title ?? ""}</span>
@@ -47,11 +47,11 @@ export function EditionFilesBlock({ ensembleId, edition }: { ensembleId: string;
       </ul>
       <p className="mt-2 text-xs text-ink-3">
         For the next program also: one XYZ file a conformer, with charge and multiplicity.{" "}
-        <a className={linkClass} href={to("conformers.zip")} download>
+        <a className={`print:hidden ${linkClass}`} href={to("conformers.zip")} download>
           zip
         </a>
         . All figures:{" "}
-        <a className={linkClass} href={to("figures.zip")} download>
+        <a className={`print:hidden ${linkClass}`} href={to("figures.zip")} download>
           SVG, zip
         </a>
         ; with PNG on the edition's page.
