@@ -101,13 +101,16 @@ function Row({
           <span className="text-ink-3">recomputing</span>
         ) : edition.verified === null ? (
           mayShare ? (
-            <Form method="post" preventScrollReset>
-              <input type="hidden" name="intent" value="verify" />
-              <input type="hidden" name="number" value={edition.number} />
-              <button type="submit" className={linkClass}>
-                verify<span className="sr-only"> edition {number}</span>
-              </button>
-            </Form>
+            <>
+              <Form method="post" preventScrollReset className="print:hidden">
+                <input type="hidden" name="intent" value="verify" />
+                <input type="hidden" name="number" value={edition.number} />
+                <button type="submit" className={linkClass}>
+                  verify<span className="sr-only"> edition {number}</span>
+                </button>
+              </Form>
+              <span className="hidden text-ink-3 print:inline">not yet</span>
+            </>
           ) : (
             <span className="text-ink-3">not yet</span>
           )

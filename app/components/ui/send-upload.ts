@@ -59,8 +59,8 @@ async function askFrames(key: string, onFrames: (frames: number) => void): Promi
   try {
     const answer = await fetch(`/files/upload?key=${key}`, { headers: { accept: "application/json" } });
     if (!answer.ok) return;
-    const { frames } = (await answer.json()) as { frames: number };
-    onFrames(frames);
+    const { frames } = (await answer.json()) as { frames: number | null };
+    if (frames !== null) onFrames(frames);
   } catch {
     // The upload itself says when the connection is lost.
   }

@@ -7,13 +7,13 @@ import { notFound } from "~/services/http.server";
 
 /**
  * Files from the browser, into the team named by the field `team`: what is open becomes a question. GET tells whoever
- * sends files, here or as a batch, how many frames of the upload `key` were read so far.
+ * sends files, here or as a batch, how many frames of the upload `key` were read so far: null before its first and after
+ * its last.
  */
 export const action = answerCall({
   async GET({ actor, url }) {
-    const frames = framesRead(actor, url.searchParams.get("key"));
-    if (frames === null) throw notFound();
-    return json({ frames });
+    if (actor.kind !== "user") throw notFound();
+    return json({ frames: framesRead(actor, url.searchParams.get("key")) });
   },
   async POST({ actor, request }) {
     if (actor.kind !== "user") throw notFound();

@@ -98,7 +98,7 @@ const RULES: Record<string, Rule> = {
   "/files/sifts/:id/export.json": FILE,
   "/files/sifts/:id/averages.csv": FILE,
   // Which team is meant stands in the body.
-  "/files/upload": { GET: everybody(404), POST: "415 415 415 415 404", DELETE: everybody(405) },
+  "/files/upload": { GET: "200 200 200 200 404", POST: "415 415 415 415 404", DELETE: everybody(405) },
   "/files/ensembles/:id/files": { GET: everybody(405), POST: "415 415 403 404 404", DELETE: everybody(405) },
   "/files/ensembles/:id/columns": {
     GET: everybody(405),
