@@ -132,6 +132,53 @@ describe("X22, decimal commas", () => {
   });
 });
 
+describe("X22, energies with a decimal comma beside coordinates with points", () => {
+  const content = (tag: string) => frame(`energy=-15,775161 ${tag}`) + frame(`energy=-15,774161 ${tag}`);
+
+  it("are asked about like coordinates, and read as points once that is confirmed", async () => {
+    const given = { level: "A", energyUnit: "hartree", energyFrom: "key:energy" };
+    for (const fields of [{ ...given }, { level: "A", energyUnit: "hartree" }]) {
+      const name = `comma-${Object.keys(fields).length}.xyz`;
+      const taken = await takenIn(token, [{ name, content: content(name) }], fields);
+      expect(taken.intake).toMatchObject({ frames: 2, accepted: 0, held: 2 });
+      expect(question(taken, "decimal-comma")).toMatchObject({
+        code: "X22",
+        reason: expect.stringContaining("Energies of 2 frames"),
+      });
+      expect(question(taken, "decimal-comma")?.options.map(({ id, values }) => [id, values?.[0]])).toEqual([
+        ["comma", "-15.775161"],
+        ["hold", "-15,775161"],
+      ]);
+      expect(taken.intake.messages.find(({ frame: of }) => of === 1)).toMatchObject({
+        code: "X22",
+        line: 2,
+        found: "-15,775161",
+      });
+      const intake = await answer(taken.id, { "decimal-comma": "comma" });
+      expect(intake).toMatchObject({ accepted: 2, held: 0, questions: [] });
+      const { levels } = await ensemble(taken.id);
+      expect(levels).toMatchObject([{ name: "A", unit: "hartree", count: 2, missing: 0 }]);
+    }
+  });
+
+  it("stay held where that is the answer", async () => {
+    const fields = { level: "A", energyUnit: "hartree" };
+    const taken = await takenIn(token, [{ name: "held.xyz", content: content("held") }], fields);
+    expect(await answer(taken.id, { "decimal-comma": "hold" })).toMatchObject({ accepted: 0, held: 2 });
+  });
+
+  it("one among others is no energy of its frame, and is quoted", async () => {
+    const lone = frame("energy=-15,775161 lone") + frame("energy=-15.774161") + frame("energy=-15.773161");
+    const taken = await takenIn(token, [{ name: "lone.xyz", content: lone }], {
+      level: "A",
+      energyUnit: "hartree",
+    });
+    expect(taken.intake).toMatchObject({ accepted: 3, held: 0, questions: [] });
+    expect(taken.levels).toMatchObject([{ count: 2, missing: 1 }]);
+    expect(taken.intake.messages.find(({ code }) => code === "E10")).toMatchObject({ found: "-15,775161" });
+  });
+});
+
 describe("X22, a lone comma among points", () => {
   it("is a slip, held without a question", async () => {
     const slip = [...BUTANE.slice(0, 13), "H 2,0740 0,7640 -0,8840"];

@@ -46,7 +46,9 @@ function PointCard({
 }) {
   const proposed = question.options.find((option) => option.proposed);
   const named = question.id === "level";
-  const [choice, setChoice] = useState(proposed?.id ?? "");
+  // Until somebody chooses, it follows the proposal: another answer may change what is proposed.
+  const [given, setChoice] = useState<string | null>(null);
+  const choice = given ?? proposed?.id ?? "";
   return (
     <QuestionCard
       count={count}
@@ -73,7 +75,7 @@ function PointCard({
             placeholder="for example B3LYP/6-31G(d)"
             help={
               question.options.length > 0
-                ? `In use: ${question.options.map(({ text }) => text).join(", ")}`
+                ? question.options.map(({ text, detail }) => `${text} (${detail ?? "in use"})`).join(", ")
                 : undefined
             }
             onChange={(event) => setChoice(event.currentTarget.value)}

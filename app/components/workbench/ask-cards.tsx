@@ -157,7 +157,10 @@ function LevelName({
   missing: boolean;
   onTyped: () => void;
 }) {
-  const [name, setName] = useState(proposed?.text ?? "");
+  // Until somebody types, it follows the proposal, which another answer may change.
+  const [typed, setName] = useState<string | null>(null);
+  const name = typed ?? proposed?.text ?? "";
+  const others = question.options.filter(({ text }) => text !== name);
   return (
     <div className="max-w-read px-4 py-4 sm:px-6">
       <TextField
@@ -174,25 +177,31 @@ function LevelName({
           onTyped();
         }}
         placeholder="for example B3LYP/6-31G(d)"
-        help={proposed?.detail ?? "As the trade writes it; tables, figures and exports carry it."}
+        help={
+          proposed && name === proposed.text
+            ? proposed.detail
+            : "As the trade writes it; tables, figures and exports carry it."
+        }
       />
-      {question.options.length > 0 ? (
-        <p className="mt-3 flex flex-wrap items-center gap-2 text-xs text-ink-3">
-          Already in use:
-          {question.options.map((option) => (
-            <Button
-              key={option.id}
-              size="sm"
-              onClick={() => {
-                setName(option.text);
-                onTyped();
-              }}
-            >
-              {option.text}
-            </Button>
-          ))}
+      {[...new Set(others.map(({ detail }) => detail))].map((where) => (
+        <p key={where} className="mt-3 flex flex-wrap items-center gap-2 text-xs text-ink-3">
+          {where}:
+          {others
+            .filter(({ detail }) => detail === where)
+            .map((option) => (
+              <Button
+                key={option.id}
+                size="sm"
+                onClick={() => {
+                  setName(option.text);
+                  onTyped();
+                }}
+              >
+                {option.text}
+              </Button>
+            ))}
         </p>
-      ) : null}
+      ))}
     </div>
   );
 }

@@ -150,3 +150,25 @@ describe("columns of a decision", () => {
     );
   });
 });
+
+describe("the level that is proposed", () => {
+  const level = (comments: string[], answers: Partial<EnergyAnswers>) => {
+    const decision = decide(comments, answers, PERSON);
+    const question =
+      decision.kind === "ask" ? decision.questions.find(({ id }) => id === "level") : undefined;
+    return question?.options.find(({ proposed }) => proposed)?.id ?? null;
+  };
+  const BOTH = ["MMFF94_energy=35.12 UFF_energy=41.2", "MMFF94_energy=36.12 UFF_energy=43.2"];
+
+  it("hangs on the number that is chosen where keys name two methods, and is none before", () => {
+    expect(level(BOTH, {})).toBeNull();
+    expect(level(BOTH, { energyFrom: "key:UFF_energy" })).toBe("UFF");
+    expect(level(BOTH, { energyFrom: "key:MMFF94_energy" })).toBe("MMFF94");
+  });
+
+  it("is not that of another number's key", () => {
+    const comments = ["MMFF94=35.12 other_energy=41.2", "MMFF94=36.12 other_energy=43.2"];
+    expect(level(comments, { energyFrom: "key:other_energy" })).toBeNull();
+    expect(level(comments, { energyFrom: "key:MMFF94" })).toBe("MMFF94");
+  });
+});

@@ -195,8 +195,17 @@ function askNumber(
   const number = energyFromQuestion(findings, elements);
   const likely = findings.proposed ?? findings.candidates[0];
   const questions = number === null ? [] : [withNone(number, "None of these")];
-  if (answers.level === null && likely !== undefined) questions.push(askLevel(likely, mode));
+  if (answers.level !== null || likely === undefined) return questions;
+  const level = askLevel(likely, mode);
+  const named = new Set(findings.candidates.map(({ key }) => suggestLevel([key ?? ""])));
+  // Names of two methods stand there: which one is meant hangs on the number that is chosen.
+  named.delete(null);
+  questions.push(named.size > 1 ? withoutProposal(level) : level);
   return questions;
+}
+
+function withoutProposal(question: IntakeQuestion): IntakeQuestion {
+  return { ...question, options: question.options.map((option) => ({ ...option, proposed: false })) };
 }
 
 function askUnit(candidate: EnergyCandidate, finding: ReturnType<typeof findUnit>): IntakeQuestion {
@@ -223,16 +232,20 @@ function askLevel(candidate: EnergyCandidate, mode: DecisionMode): IntakeQuestio
   };
 }
 
-/** What names a method: the tag of a data field, else the words of the comment line. */
+/** What names a method: the key or tag of the number itself, else the words of the comment line. */
 function namedLevels({ from, key }: EnergyCandidate, comment: string): string[] {
+  const own = suggestLevel([key ?? ""]);
+  if (own !== null) return [own];
   if (!from.startsWith("field:")) return levelWords(comment, key);
-  const named = suggestLevel([key ?? "", comment]);
+  const named = suggestLevel([comment]);
   return named === null ? [] : [named];
 }
 
 /** Words of a comment line that look like the name of a method: `MMFF94`, `B3LYP/6-31G(d)`, `HF/def2-SVP`. */
 function levelWords(comment: string, key: string | null): string[] {
-  const words = comment.slice(0, 1000).split(/[\s,;=:"]+/);
+  // A name before "=" is the key of another number and names that one's level.
+  const text = comment.slice(0, 1000).replace(/[^\s,;="]+ ?=/g, " ");
+  const words = text.split(/[\s,;=:"]+/);
   return words.filter((word) => {
     if (word === key || word.length < 2 || word.length > 40) return false;
     if (!/^[A-Z][A-Za-z0-9()*+,/ω-]*$/.test(word) || !/[A-Z]{2}/.test(word)) return false;

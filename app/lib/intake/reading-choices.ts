@@ -34,6 +34,8 @@ export interface OpenReading {
   readonly line: number;
   /** What each option makes of this frame, in a few characters. */
   readonly shown: Readonly<Record<string, string>>;
+  /** Only the energy of the frame hangs on it; left out where its atoms do. */
+  readonly of?: "energy";
 }
 
 /** Row of the acceptance tables. */

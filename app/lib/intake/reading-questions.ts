@@ -124,9 +124,13 @@ export function readingQuestion(
     id: askId(ask, batch),
     code: ASK_CODES[ask],
     text,
-    reason: reason(plural(frames, "frame")),
+    reason: first[0]?.of === "energy" ? commaReason(frames) : reason(plural(frames, "frame")),
     options: options.map(toOption),
   };
+}
+
+function commaReason(frames: number): string {
+  return `Energies of ${plural(frames, "frame")} are written with a comma, their coordinates with a point. Below: the first of them.`;
 }
 
 /** What is said of a frame that waits for an answer. */

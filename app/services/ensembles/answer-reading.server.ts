@@ -100,7 +100,7 @@ export async function answerReading(at: At, given: readonly ReadingAnswer[]): Pr
     mode: {
       refuseOpen: false,
       confirmUnit: row.createdByToken === null,
-      knownLevels: await levelsInUse(at.teamId),
+      knownLevels: await levelsInUse(at.teamId, at.ensembleId),
     },
     batchReadings: await batchReadings(at, given),
     keeps: () => true,

@@ -46,11 +46,11 @@ export function bondTableOf({
   };
 }
 
-/** The scan of the comments, made anew where the number was named after the files. */
+/** The scan of the comments, made anew where the number or its decimal comma was known only after the files. */
 export async function scanWith(reading: Reading, result: ReadResult, energyFrom: string | null) {
   const named = energyFrom === "none" ? null : energyFrom;
-  if (reading.options.energyFrom === named) return result;
-  const { decimalCommas } = reading;
+  const { decimalCommas, scanAgain } = reading;
+  if (reading.options.energyFrom === named && !scanAgain) return result;
   const files = result.files.map(({ entry, ...file }) => ({ ...file, name: entry ?? file.name }));
   return scanComments(reading.ensembleId, files, named, { decimalCommas });
 }

@@ -1,5 +1,5 @@
 import { createHash } from "node:crypto";
-import { and, asc, count, desc, eq, inArray, ne, sql } from "drizzle-orm";
+import { and, asc, count, desc, eq, inArray, isNull, ne, sql } from "drizzle-orm";
 import { db, type Queryable } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { columns, ensembles, frames, intakeMessages, questions } from "../../db/schema.server.ts";
@@ -194,13 +194,24 @@ export async function chiralityOf(
   return { chirality, chiralityNote: note.slice(0, 500) };
 }
 
-/** Names of the levels that a team uses, the commonest first. */
-export async function levelsInUse(teamId: string): Promise<string[]> {
+/**
+ * Names of the levels that a team uses, the commonest first.
+ *
+ * @param except an ensemble that is being read again: its own names are no others'
+ */
+export async function levelsInUse(teamId: string, except: string | null = null): Promise<string[]> {
   const rows = await db
     .select({ name: columns.name, n: count() })
     .from(columns)
     .innerJoin(ensembles, eq(ensembles.id, columns.ensembleId))
-    .where(and(eq(ensembles.teamId, teamId), eq(columns.kind, "energy")))
+    .where(
+      and(
+        eq(ensembles.teamId, teamId),
+        isNull(ensembles.deletedAt),
+        eq(columns.kind, "energy"),
+        except === null ? undefined : ne(ensembles.id, except),
+      ),
+    )
     .groupBy(columns.name)
     .orderBy(desc(count()), asc(columns.name))
     .limit(6);

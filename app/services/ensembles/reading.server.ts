@@ -7,6 +7,7 @@ import { env } from "../../env.server.ts";
 import { DomainError, type Fault } from "../../lib/errors.ts";
 import { formatBytes, formatCount } from "../../lib/format.ts";
 import { type Classification, FrameClassifier } from "../../lib/intake/classify.ts";
+import { commaEnergy } from "../../lib/intake/comma-energy.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
 import { isExtended } from "../../lib/intake/extended-comment.ts";
 import { energiesAsWritten } from "../../lib/intake/field-energies.ts";
@@ -33,6 +34,7 @@ import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../../lib/intake/report.ts";
 import { isSdfFrame } from "../../lib/sdf/frame.ts";
 import { SDF_READER_VERSION, SdfReader } from "../../lib/sdf.server.ts";
+import { quoteFound } from "../../lib/text/escape.ts";
 import { sniff } from "../../lib/text/sniff.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
 import { XYZ_READER_VERSION, XyzReader } from "../../lib/xyz.server.ts";
@@ -170,6 +172,13 @@ export class Reading {
   private readonly asked = new Map<Exclude<Ask, "group">, { frames: number; first: OpenReading[] }>();
   /** Numbers of some frames have decimal commas. */
   decimalCommas = false;
+  /** Energies with a decimal comma in frames whose coordinates have points; what their reader made of the frame. */
+  private readonly commaEnergies = new Map<
+    number,
+    { text: string; line: number; state: "accepted" | "remarked" }
+  >();
+  /** The comments are to be looked through again with points: known only when all frames are there. */
+  scanAgain = false;
   private frames = 0;
   private sources = 0;
   private sound = 0;
@@ -408,6 +417,8 @@ export class Reading {
       this.labels.set(shape, [...frame.labels]);
     const note = frame.remarks[0]?.message ?? null;
     const state = note === null ? "accepted" : "remarked";
+    const comma = sdf || frame.decimalCommas ? null : commaEnergy(comment);
+    if (comma !== null) this.commaEnergies.set(number, { text: comma, line: line + 1, state });
     this.askOf(frame, mapping, state);
     await this.rows.add({ ...row, shape, indexInShape, mapping, state, holdReason: null, note });
   }
@@ -427,12 +438,35 @@ export class Reading {
     const [first] = open;
     if (first === undefined) return;
     this.waiting.set(frame.number, { state, open: first });
-    for (const reading of open) {
-      if (reading.ask === "group") continue;
-      const asked = this.asked.get(reading.ask) ?? { frames: 0, first: [] };
-      this.asked.set(reading.ask, asked);
-      asked.frames += 1;
-      if (asked.first.length < PREVIEWS) asked.first.push(reading);
+    for (const reading of open) this.count(reading);
+  }
+
+  private count(reading: OpenReading): void {
+    if (reading.ask === "group") return;
+    const asked = this.asked.get(reading.ask) ?? { frames: 0, first: [] };
+    this.asked.set(reading.ask, asked);
+    asked.frames += 1;
+    if (asked.first.length < PREVIEWS) asked.first.push(reading);
+  }
+
+  /**
+   * Energies with a decimal comma are asked about where most frames write theirs so (row X22); one among others is a
+   * slip, and its frame has no energy (row E10).
+   */
+  private askOfCommas(): void {
+    if (this.commaEnergies.size * 2 <= this.sound) return;
+    const choice = this.choices["decimal-comma"];
+    this.scanAgain = choice !== HOLD;
+    if (this.scanAgain) this.decimalCommas = true;
+    for (const [number, { text, line, state }] of this.commaEnergies) {
+      if (this.settled.has(number) || this.refused.has(number)) continue;
+      const shown = { comma: text.replace(",", "."), hold: text };
+      const open: OpenReading = { ask: "decimal-comma", proposed: "comma", line, shown, of: "energy" };
+      if (choice === HOLD) this.refused.set(number, open);
+      else if (choice === AS_PROPOSED) {
+        if (!this.waiting.has(number)) this.waiting.set(number, { state, open });
+        this.count(open);
+      }
     }
   }
 
@@ -445,6 +479,7 @@ export class Reading {
   async end(): Promise<ReadResult> {
     await this.blocks.end();
     await this.rows.end();
+    this.askOfCommas();
     const like = Number(/^frame:(\d+)$/.exec(this.choices.group ?? "")?.[1] ?? Number.NaN);
     const classification = this.classifier.finish(Number.isNaN(like) ? {} : { like });
     const { group, graph, shape } = classification;
@@ -496,7 +531,8 @@ export class Reading {
     const file = this.fileOf(number);
     const { ask, line } = open;
     const told = refused ? heldMessage(ask) : waitingMessage(ask);
-    this.messages.add({ ...told, file, line, frame: number });
+    const found = open.of === "energy" ? { found: quoteFound(open.shown.hold ?? "") } : {};
+    this.messages.add({ ...told, ...found, file, line, frame: number });
     if (refused) return { number, state: "held", holdReason: "unclear", note: told.message };
     const readState = state === "remarked" ? state : (waits?.state ?? state);
     return { number, state: "held", readState, holdReason: "waits-for-answer", note: told.message };

@@ -1,4 +1,4 @@
-import { and, eq, inArray, isNull, like, ne, or } from "drizzle-orm";
+import { and, asc, eq, inArray, isNull, like, ne, or } from "drizzle-orm";
 import { db, inTransaction, type Queryable, type Transaction } from "../../db/client.server.ts";
 import {
   batches,
@@ -26,6 +26,7 @@ import { findQuestions } from "./load-intake.server.ts";
 import { findStored, readStored, sourcesOf, takeBack } from "./read-stored.server.ts";
 import { refreshChirality } from "./refresh-chirality.server.ts";
 import { rereadBatches } from "./reread-batches.server.ts";
+import { answersSoFar, type EnsembleRow } from "./settle-answers.server.ts";
 import { siftAfterIntake } from "./sift-after-intake.server.ts";
 
 type At = Grant & { ensembleId: string };
@@ -201,11 +202,34 @@ async function keepBatchReadings(tx: Transaction, ensembleId: string, plan: Rere
   }
 }
 
+/**
+ * How the energies were read until now: what was written with the upload, what was answered since, and where neither
+ * names it, what the files said themselves. To be asked before the old rows go.
+ */
+async function readUntilNow(tx: Transaction, old: EnsembleRow): Promise<WrittenAnswers> {
+  const known = answersSoFar(old, await findQuestions(old.id, tx));
+  // A property that a person made into a level was not read as one.
+  const [level] = await tx
+    .select({ name: columns.name, from: columns.origin, unit: columns.unit })
+    .from(columns)
+    .where(
+      and(eq(columns.ensembleId, old.id), eq(columns.kind, "energy"), isNull(columns.createdBy), fromFiles),
+    )
+    .orderBy(asc(columns.ordinal))
+    .limit(1);
+  return {
+    ...old.answers,
+    level: level?.name ?? known.level,
+    energyUnit: level?.unit ?? known.energyUnit,
+    energyFrom: level?.from ?? known.energyFrom,
+  };
+}
+
 async function writeDown(
   tx: Transaction,
   at: At,
   plan: RereadPlan,
-  old: { answers: WrittenAnswers; accepted: number },
+  old: { before: WrittenAnswers; accepted: number },
   now: { questions: number } & Counts,
 ): Promise<void> {
   for (const { id, text, option, optionText } of plan.answered) {
@@ -218,7 +242,7 @@ async function writeDown(
   if (plan.answered.length > 0) return;
   await writeEntry(tx, at, at, {
     type: "reread",
-    data: { before: old.answers, after: plan.answers, ...now },
+    data: { before: old.before, after: plan.answers, ...now },
   });
 }
 
@@ -236,6 +260,7 @@ async function adopt(tx: Transaction, at: At, readId: string, plan: RereadPlan):
   const held = await heldByHand(tx, old.id);
   const released = await releasedByHand(tx, old.id);
   const answered = await answeredRows(tx, at, plan);
+  const before = await readUntilNow(tx, old);
   await removeOld(tx, old.id);
   await moveNew(tx, readId, old.id);
   await keepAnswered(tx, old.id, answered);
@@ -277,7 +302,7 @@ async function adopt(tx: Transaction, at: At, readId: string, plan: RereadPlan):
   await recomputeComputed(tx, old.id);
   await refreshChirality(tx, old.id);
   await tx.delete(ensembles).where(eq(ensembles.id, readId));
-  await writeDown(tx, at, plan, old, { questions: open.length, ...counts });
+  await writeDown(tx, at, plan, { before, accepted: old.accepted }, { questions: open.length, ...counts });
 }
 
 /**
@@ -338,7 +363,7 @@ export async function rereadEnsemble(options: {
     mode: {
       refuseOpen: !interactive,
       confirmUnit: interactive,
-      knownLevels: interactive ? await levelsInUse(at.teamId) : [],
+      knownLevels: interactive ? await levelsInUse(at.teamId, at.ensembleId) : [],
     },
     batchReadings: new Map(),
     // What was answered of the reading itself holds for other energies too.

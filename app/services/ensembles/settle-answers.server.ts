@@ -100,7 +100,7 @@ async function decide(
   const decision = decideEnergies(findings, graph.elements, answers, {
     refuseOpen: false,
     confirmUnit: ensemble.createdByToken === null,
-    knownLevels: await levelsInUse(ensemble.teamId),
+    knownLevels: await levelsInUse(ensemble.teamId, ensemble.id),
     comment: scanned.firstComment,
   });
   if (decision.kind === "ask") return { decision, settled: null, graph };
@@ -160,7 +160,18 @@ export async function settleAnswers(tx: Transaction, ensemble: EnsembleRow): Pro
   const { decision, settled, graph } = await decide(tx, ensemble, asked);
   if (settled !== null) return writeSettled(tx, ensemble, settled, graph);
   const open = new Set(asked.filter(({ answered }) => answered === undefined).map(({ id }) => id));
-  const more = decision.kind === "ask" ? decision.questions.filter(({ id }) => !open.has(id)) : [];
-  await insertQuestions(tx, ensemble.id, more);
+  const now = decision.kind === "ask" ? decision.questions : [];
+  // The level that was proposed may have been that of another number than the one chosen since.
+  for (const question of now.filter(({ id }) => id === "level" && open.has(id))) {
+    await tx
+      .update(questionTable)
+      .set({ options: [...question.options] })
+      .where(and(eq(questionTable.ensembleId, ensemble.id), eq(questionTable.id, question.id)));
+  }
+  await insertQuestions(
+    tx,
+    ensemble.id,
+    now.filter(({ id }) => !open.has(id)),
+  );
   return 0;
 }
