@@ -1,8 +1,11 @@
+import { and, asc, eq } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
+import { db } from "~/db/client.server";
+import { logbook } from "~/db/schema.server";
 import { loadIntake } from "~/services/ensembles/load-intake.server";
 import { personOf } from "../factories/editions";
 import { makeMember } from "../factories/people";
-import { BUTANE, frame, makeLab, takenIn, withJobs } from "../factories/upload";
+import { BUTANE, frame, makeLab, post, takenIn, withJobs } from "../factories/upload";
 import { call } from "../setup/app";
 
 let runner: Awaited<ReturnType<typeof withJobs>>;
@@ -28,6 +31,42 @@ const levels = async () => {
 };
 const send = (cookie: string, form: Record<string, string>) =>
   call(`/ensembles/${id}/intake`, { cookie, form: { intent: "reread", ...form } });
+
+describe("the entry of a reading again", () => {
+  const entries = async (ensembleId: string) => {
+    const rows = await db
+      .select({ data: logbook.data })
+      .from(logbook)
+      .where(and(eq(logbook.ensembleId, ensembleId), eq(logbook.type, "reread")))
+      .orderBy(asc(logbook.id));
+    return rows.map(({ data }) => data);
+  };
+  const content = [1, 2, 3].map((k) => frame(`E_one= -${k}.5 E_two= -${2 * k}.25`, BUTANE)).join("");
+
+  it("says what was in force before, answered on the cards", async () => {
+    const taken = await takenIn(lab.token, [{ name: "cards.xyz", content }], { level: "Cards" });
+    const given = {
+      answers: [
+        { id: "energy-from", option: "key:E_one" },
+        { id: "energy-unit", option: "kJ/mol" },
+      ],
+    };
+    expect((await post(lab.token, `/ensembles/${taken.id}/answers`, given)).status).toBe(200);
+    const form = { intent: "reread", level: "Second", energyUnit: "eV", energyFrom: "key:E_two" };
+    const page = `/ensembles/${taken.id}/intake`;
+    expect((await call(page, { cookie: analyst.cookie, form })).status).toBe(200);
+    // The second time by the interface.
+    const body = { level: "Third", energyUnit: "hartree", energyFrom: "key:E_one" };
+    expect((await post(lab.token, `/ensembles/${taken.id}/reread`, body)).status).toBe(200);
+    expect(await entries(taken.id)).toMatchObject([
+      {
+        before: { level: "Cards", energyUnit: "kJ/mol", energyFrom: "key:E_one" },
+        after: { level: "Second", energyUnit: "eV", energyFrom: "key:E_two" },
+      },
+      { before: { level: "Second", energyUnit: "eV", energyFrom: "key:E_two" } },
+    ]);
+  });
+});
 
 describe("reading again from the page of intake", () => {
   it("puts a wrong unit and level right", async () => {

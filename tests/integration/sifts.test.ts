@@ -1,4 +1,4 @@
-import { asc, eq } from "drizzle-orm";
+import { and, asc, eq } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { jobs, logbook, sifts } from "~/db/schema.server";
@@ -81,8 +81,24 @@ describe("a sift", () => {
     const second = (await (await ask({ level: "MMFF94", rmsdTolerance: 0.28 })).json()).id;
     const newest = async () => (await findSiftsOf([ensembleId]))[0]?.id;
     expect(await newest()).toBe(second);
+    const recipes = () =>
+      db
+        .select({ data: logbook.data })
+        .from(logbook)
+        .where(and(eq(logbook.ensembleId, ensembleId), eq(logbook.type, "sift")))
+        .orderBy(asc(logbook.id));
+    const before = (await recipes()).length;
     expect((await (await ask({ level: "MMFF94", rmsdTolerance: 0.27 })).json()).id).toBe(first);
     expect(await newest()).toBe(first);
+    // It is the set of everybody from now on, so the logbook says who went back; asked twice, once.
+    await ask({ level: "MMFF94", rmsdTolerance: 0.27 });
+    const entries = await recipes();
+    expect(entries).toHaveLength(before + 1);
+    expect(entries.at(-1)?.data).toMatchObject({
+      siftId: first,
+      back: true,
+      recipe: { rmsdTolerance: 0.27 },
+    });
   });
 
   it("accounts for every frame exactly once", async () => {

@@ -77,6 +77,11 @@ const WRITTEN: [LogbookEntry, string, string | null][] = [
   ],
   [{ type: "sift", data: { siftId: "a", automatic: false, recipe: { other: 1 } } }, "Asked for a sift", null],
   [
+    { type: "sift", data: { siftId: "a", automatic: false, back: true, recipe: { other: 1 } } },
+    "Went back to an earlier set",
+    null,
+  ],
+  [
     {
       type: "token-made",
       data: { prefix: "lowl_b41e", name: "Night", scope: "add", endsAt: "2027-01-31T00:00:00Z" },

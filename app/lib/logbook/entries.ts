@@ -115,7 +115,13 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
   }),
   z.object({
     type: z.literal("sift"),
-    data: z.object({ siftId: z.string(), automatic: z.boolean(), recipe: z.unknown() }),
+    data: z.object({
+      siftId: z.string(),
+      automatic: z.boolean(),
+      /** A set computed before became the ensemble's own again. */
+      back: z.boolean().optional(),
+      recipe: z.unknown(),
+    }),
   }),
   z.object({ type: z.literal("sift-cancelled"), data: z.object({ siftId: z.string() }) }),
   z.object({ type: z.literal("export"), data: z.object({ siftId: z.string(), format: z.string() }) }),
@@ -332,7 +338,7 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       return { text: `Asked to release frame ${entry.data.frame}; refused`, detail: entry.data.why };
     case "sift":
       return {
-        text: entry.data.automatic ? "Sift begun after intake" : "Asked for a sift",
+        text: siftWords(entry.data),
         detail: recipeWords(entry.data.recipe),
       };
     case "sift-cancelled":
@@ -469,6 +475,15 @@ const recipeShape = z.object({
 });
 
 /** The recipe in one line; what an older version wrote in another shape is left out, not guessed. */
+function siftWords({ automatic, back, recipe }: { automatic: boolean; back?: boolean; recipe?: unknown }) {
+  if (automatic) return "Sift begun after intake";
+  if (back !== true) return "Asked for a sift";
+  const read = recipeShape.safeParse(recipe);
+  return read.success
+    ? `Went back to the set at ${withUnit(fixed(read.data.rmsdTolerance, 3), "Å")}`
+    : "Went back to an earlier set";
+}
+
 function recipeWords(recipe: unknown): string | null {
   const read = recipeShape.safeParse(recipe);
   if (!read.success) return null;

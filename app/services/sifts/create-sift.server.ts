@@ -87,17 +87,18 @@ async function startAgain(tx: Queryable, siftId: string, at: Asker, recipe: Sift
 
 /**
  * Makes a known sift the one that pages show where no other is named: whoever asks for it again, by going back to
- * earlier settings, means it.
+ * earlier settings, means it. That changes the set for everybody, so the logbook has it.
  */
-async function putFirst(tx: Queryable, ensembleId: string, siftId: string): Promise<void> {
+async function putFirst(tx: Queryable, siftId: string, at: Asker, recipe: SiftRecipe): Promise<void> {
   const newest = await tx
     .select({ id: sifts.id })
     .from(sifts)
-    .where(eq(sifts.ensembleId, ensembleId))
+    .where(eq(sifts.ensembleId, at.ensembleId))
     .orderBy(desc(lastAsked), desc(sifts.id))
     .limit(1);
   if (newest[0]?.id === siftId) return;
   await tx.update(sifts).set({ askedAt: new Date() }).where(eq(sifts.id, siftId));
+  await writeEntry(tx, at, at, { type: "sift", data: { siftId, automatic: false, back: true, recipe } });
 }
 
 async function insertOrFind(
@@ -118,7 +119,7 @@ async function insertOrFind(
   if (known !== undefined) {
     const { status } = await findSift(known, tx);
     if (status === "failed" || status === "cancelled") await startAgain(tx, known, at, recipe, automatic);
-    else if (!automatic) await putFirst(tx, at.ensembleId, known);
+    else if (!automatic) await putFirst(tx, known, at, recipe);
     return known;
   }
   const id = newId();
