@@ -49,17 +49,20 @@ export function AppShell({
   );
 }
 
+/** The first page of a visit, or one that was loaded again, begins at the top, as everywhere. */
+let isFirstPage = true;
+
 /**
  * On another page of ours what had the focus is gone with the last one: the content takes it, so that keys and readers
  * go on from there and not from the top of the window.
  */
 function useFocusAfterMove(main: RefObject<HTMLElement | null>) {
-  const { key, pathname } = useLocation();
+  const { pathname } = useLocation();
   // biome-ignore lint/correctness/useExhaustiveDependencies: the page is another one when its address is
   useEffect(() => {
     const lost = document.activeElement === null || document.activeElement === document.body;
-    // The first page of a visit begins at the top, as everywhere.
-    if (key !== "default" && lost) main.current?.focus({ preventScroll: true });
+    if (!isFirstPage && lost) main.current?.focus({ preventScroll: true });
+    isFirstPage = false;
   }, [pathname, main]);
 }
 
