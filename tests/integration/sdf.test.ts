@@ -98,6 +98,17 @@ describe("an SDF with two energies in every record", () => {
     expect((await missing.json()).errors).toMatchObject([{ field: "energyFrom" }]);
   });
 
+  it("proposes the level of the number that was chosen, and none before", async () => {
+    const own = { name: "two-levels.sdf", content: `${file.content.toString()}\n` };
+    const taken = await takenIn(token, [own], {});
+    const proposed = (questions: typeof taken.intake.questions) =>
+      questions.find(({ id }) => id === "level")?.options.filter((option) => option.proposed);
+    expect(proposed(taken.intake.questions)).toEqual([]);
+    const answers = [{ id: "energy-from", option: "field:UFF_ENERGY_KCAL_MOL" }];
+    const { intake } = await (await post(token, `/ensembles/${taken.id}/answers`, { answers })).json();
+    expect(proposed(intake.questions)).toMatchObject([{ id: "UFF", detail: "Stands in the data fields" }]);
+  });
+
   it("keeps titles as labels, the bond table with its orders, and hands over a file that reads back", async () => {
     const packed = { name: "tosylamide.sdf.gz", content: gzipSync(file.content) };
     const taken = await takenIn(token, [packed], {
