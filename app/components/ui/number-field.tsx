@@ -1,4 +1,4 @@
-import { type KeyboardEvent, useLayoutEffect, useRef, useState } from "react";
+import { createContext, type KeyboardEvent, useContext, useLayoutEffect, useRef, useState } from "react";
 import { readNumber, readTyped } from "~/lib/format";
 import { Field, type FieldNotes, frameClass, useFieldIds } from "./field";
 
@@ -33,11 +33,25 @@ export interface NumberFieldProps extends FieldNotes, NumberRange {
   bare?: { id: string; describedBy: string | undefined; onError: (text: string | null) => void };
 }
 
+/**
+ * All settings that stand beside a field, as text. A refused entry was typed while they were so: where any of them
+ * changes, the field shows the value that holds.
+ */
+export const BesideField = createContext("");
+
 /** What is being typed over a value; once another value comes from elsewhere it is of no more use. */
 interface Draft {
   text: string;
   over: number | null;
+  beside: string;
   fault: string | null;
+  /** The text that was refused; another one is being put right. */
+  refused?: string;
+}
+
+/** Whether what was typed still has its occasion; what is being typed outlives a change of other settings. */
+export function stillTyped(draft: Omit<Draft, "fault">, value: number | null, beside: string): boolean {
+  return draft.over === value && (draft.beside === beside || draft.text !== draft.refused);
 }
 
 /**
@@ -48,8 +62,11 @@ interface Draft {
 export function NumberField(props: NumberFieldProps) {
   const { label, aside, help, hideLabel, className, value, bare } = props;
   const [typed, setTyped] = useState<Draft | null>(null);
-  const draft = typed !== null && typed.over === value ? typed : null;
-  const fault = draft?.fault ?? null;
+  const beside = useContext(BesideField);
+  const draft = typed !== null && stillTyped(typed, value, beside) ? typed : null;
+  // Gone for good: it must not come back when the settings do.
+  if (draft === null && typed !== null) setTyped(null);
+  const fault = draft?.beside === beside ? draft.fault : null;
   const error = fault ?? props.error;
   const ids = useFieldIds(bare?.id, { help, error });
   const input = useMarkedOnEntry(draft === null ? value : null);
@@ -63,7 +80,7 @@ export function NumberField(props: NumberFieldProps) {
     const emptied = props.optional && text.trim() === "";
     if (!emptied && (read.value === null || !inRange(read.value, props))) {
       const said = [read.value === null ? read.fault : null, props.wrong].filter(Boolean).join(" ");
-      setTyped({ text, over: value, fault: said });
+      setTyped({ text, over: value, beside, fault: said, refused: text });
       bare?.onError(said);
       return;
     }
@@ -111,7 +128,9 @@ export function NumberField(props: NumberFieldProps) {
         aria-describedby={bare?.describedBy ?? ids.describedBy}
         className={`h-full min-w-0 flex-1 bg-transparent text-ink outline-none ${bare ? "text-right" : ""}`}
         value={draft?.text ?? (value === null ? "" : props.write(value))}
-        onChange={(event) => setTyped({ text: event.currentTarget.value, over: value, fault })}
+        onChange={(event) =>
+          setTyped({ text: event.currentTarget.value, over: value, beside, fault, refused: draft?.refused })
+        }
         onBlur={() => draft !== null && settle(draft.text)}
         {...input}
         onKeyDown={onKeyDown}

@@ -1,6 +1,6 @@
-import { type KeyboardEvent, useEffect, useId, useRef, useState } from "react";
+import { type KeyboardEvent, useContext, useEffect, useId, useRef, useState } from "react";
 import { Field, type FieldNotes } from "./field";
-import { NumberField } from "./number-field";
+import { BesideField, NumberField } from "./number-field";
 
 /** A pause after the last arrow key this long is a release: one walk by key is one step of the browser's history. */
 const KEY_PAUSE_MS = 400;
@@ -48,9 +48,11 @@ export function SliderField({
   className?: string;
 }) {
   const id = useId();
-  const [slip, setSlip] = useState<{ text: string; over: number } | null>(null);
-  // A slip belongs to the value that it was typed over: set from elsewhere, nothing is wrong any more.
-  const error = slip !== null && slip.over === value ? slip.text : null;
+  const beside = useContext(BesideField);
+  const [slip, setSlip] = useState<{ text: string; over: number; beside: string } | null>(null);
+  // A slip belongs to the settings that it was typed over: set from elsewhere, nothing is wrong any more.
+  const error = slip !== null && slip.over === value && slip.beside === beside ? slip.text : null;
+  if (error === null && slip !== null) setSlip(null);
   // What the last movement ended at: pointer, key and blur events must not commit the same value twice.
   const moved = useRef<number | null>(null);
   const shown = Math.min(max, Math.max(min, value));
@@ -142,7 +144,7 @@ export function SliderField({
           bare={{
             id: `${id}-typed`,
             describedBy: describedBy || undefined,
-            onError: (text) => setSlip(text === null ? null : { text, over: value }),
+            onError: (text) => setSlip(text === null ? null : { text, over: value, beside }),
           }}
         />
       </div>

@@ -1,4 +1,4 @@
-import { useId, useState } from "react";
+import { useId, useRef, useState } from "react";
 import { Button } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
 import { atomName } from "~/lib/chem/elements";
@@ -16,6 +16,14 @@ export function PickAtoms({
 }) {
   const [draft, setDraft] = useState<string | null>(null);
   const [error, setError] = useState<string | null>(null);
+  const [over, setOver] = useState(picked.join());
+  // Atoms picked in the view are what is measured now, whatever was typed before.
+  if (over !== picked.join()) {
+    setOver(picked.join());
+    setDraft(null);
+    setError(null);
+  }
+  const around = useRef<HTMLDivElement>(null);
   const list = useId();
   const names = picked.map((atom) => atomName(elements, atom));
   const settle = (text: string) => {
@@ -28,7 +36,7 @@ export function PickAtoms({
   // The last name is being typed: what stands before it is kept by every suggestion.
   const before = (draft ?? "").replace(/\S*$/, "");
   return (
-    <div className="flex items-start gap-2">
+    <div ref={around} className="flex items-start gap-2">
       <TextField
         className="flex-1"
         label="Atoms to measure"
@@ -56,7 +64,16 @@ export function PickAtoms({
           ? null
           : elements.map((_, atom) => <option key={atom} value={`${before}${atomName(elements, atom)}`} />)}
       </datalist>
-      <Button kind="quiet" className="mt-6" disabled={picked.length === 0} onClick={() => onPick([])}>
+      <Button
+        kind="quiet"
+        className="mt-6"
+        disabled={picked.length === 0}
+        onClick={() => {
+          onPick([]);
+          // The button has nothing more to clear and cannot keep the focus.
+          around.current?.querySelector("input")?.focus();
+        }}
+      >
         Clear
       </Button>
     </div>

@@ -1,7 +1,7 @@
 import { useEffect, useRef, useState } from "react";
 import { Checkbox } from "~/components/ui/checkbox";
 import { LevelSelect } from "~/components/ui/level-marker";
-import { NumberField } from "~/components/ui/number-field";
+import { BesideField, NumberField } from "~/components/ui/number-field";
 import { Segments } from "~/components/ui/segments";
 import { SelectField } from "~/components/ui/select-field";
 import { SliderField } from "~/components/ui/slider-field";
@@ -71,133 +71,135 @@ export function SiftSettings({
   if (tolerance !== null) lastTolerance.current = tolerance;
 
   return (
-    <SettingsStrip words={words} columns="sm:grid-cols-2">
-      <SliderField
-        label="RMSD tolerance"
-        value={draft.rmsdTolerance ?? DEFAULT_RMSD_TOLERANCE}
-        min={0}
-        max={1}
-        fieldMax={100}
-        step={0.01}
-        unit="Å"
-        fieldClass="w-32"
-        write={(value) => fixed(value, 3)}
-        wrong="An RMSD tolerance from 0 to 100 Å, for example 0.200."
-        onChange={(value) => slide({ rmsdTolerance: value })}
-        onCommit={(value) => set({ rmsdTolerance: value })}
-      />
-      <div className="min-w-0">
+    <BesideField value={JSON.stringify(draft)}>
+      <SettingsStrip words={words} columns="sm:grid-cols-2">
         <SliderField
-          label="Energy tolerance"
-          value={lastTolerance.current}
+          label="RMSD tolerance"
+          value={draft.rmsdTolerance ?? DEFAULT_RMSD_TOLERANCE}
           min={0}
           max={1}
-          fieldMax={1000}
+          fieldMax={100}
           step={0.01}
-          unit="kcal/mol"
-          fieldClass="w-36"
-          disabled={!energies || tolerance === null}
-          write={formatEnergy}
-          wrong="An energy tolerance from 0 kcal/mol, for example 0.15."
-          onChange={(value) => slide({ energyTolerance: value })}
-          onCommit={(value) => set({ energyTolerance: value })}
+          unit="Å"
+          fieldClass="w-32"
+          write={(value) => fixed(value, 3)}
+          wrong="An RMSD tolerance from 0 to 100 Å, for example 0.200."
+          onChange={(value) => slide({ rmsdTolerance: value })}
+          onCommit={(value) => set({ rmsdTolerance: value })}
         />
-        {energies ? (
-          <Checkbox
-            className="mt-3 text-xs text-ink-2"
-            checked={tolerance === null}
-            disabled={locked}
-            onChange={(event) =>
-              set({ energyTolerance: event.currentTarget.checked ? null : lastTolerance.current })
-            }
-          >
-            None: the RMSD alone decides
-          </Checkbox>
-        ) : null}
-      </div>
-      <Segments
-        label="Atoms compared"
-        value={draft.atoms ?? "heavy+polarH"}
-        disabled={locked}
-        options={[
-          { value: "heavy", label: "Heavy" },
-          { value: "heavy+polarH", label: "Heavy and polar H" },
-          { value: "all", label: "All" },
-        ]}
-        onChange={(atoms) => set({ atoms })}
-      />
-      <Segments
-        label="Mirror images"
-        value={draft.mirror ?? "auto"}
-        disabled={locked}
-        options={[
-          { value: "auto", label: `Auto: ${autoMirror(chirality)}` },
-          { value: "merge", label: "Merge", disabled: chirality === "chiral" },
-          { value: "keep", label: "Keep" },
-        ]}
-        help={
-          chirality === "chiral"
-            ? "The molecule counts as chiral: its mirror image is another compound."
-            : undefined
-        }
-        onChange={(mirror) => set({ mirror })}
-      />
-      <div className="grid grid-cols-2 gap-x-6 gap-y-4 max-[24rem]:grid-cols-1 sm:col-span-2 xl:grid-cols-4">
-        {ensemble.levels.length > 0 ? (
-          <LevelSelect
-            label="Level that orders the frames"
-            levels={ensemble.levels}
-            value={draft.level ?? ""}
-            disabled={locked}
-            onChange={(level) => set({ level })}
-          />
-        ) : null}
-        {energies ? (
-          <NumberField
-            label="Energy window"
-            value={draft.window ?? null}
-            optional
-            placeholder="none"
+        <div className="min-w-0">
+          <SliderField
+            label="Energy tolerance"
+            value={lastTolerance.current}
             min={0}
-            max={100000}
-            above
-            step={0.5}
+            max={1}
+            fieldMax={1000}
+            step={0.01}
             unit="kcal/mol"
-            disabled={locked}
+            fieldClass="w-36"
+            disabled={!energies || tolerance === null}
             write={formatEnergy}
-            wrong="A window lies above 0 kcal/mol, for example 5.00; empty for none."
-            onCommit={(window) => set({ window })}
+            wrong="An energy tolerance from 0 kcal/mol, for example 0.15."
+            onChange={(value) => slide({ energyTolerance: value })}
+            onCommit={(value) => set({ energyTolerance: value })}
           />
-        ) : null}
-        <SelectField
-          label="Chirality"
-          value={draft.chirality ?? "auto"}
+          {energies ? (
+            <Checkbox
+              className="mt-3 text-xs text-ink-2"
+              checked={tolerance === null}
+              disabled={locked}
+              onChange={(event) =>
+                set({ energyTolerance: event.currentTarget.checked ? null : lastTolerance.current })
+              }
+            >
+              None: the RMSD alone decides
+            </Checkbox>
+          ) : null}
+        </div>
+        <Segments
+          label="Atoms compared"
+          value={draft.atoms ?? "heavy+polarH"}
           disabled={locked}
-          choices={[
-            {
-              value: "auto",
-              label: `Auto: ${ensemble.chirality === "unsure" ? "chiral, unsure" : ensemble.chirality}`,
-            },
-            { value: "achiral", label: "Take as achiral" },
-            { value: "chiral", label: "Take as chiral" },
+          options={[
+            { value: "heavy", label: "Heavy" },
+            { value: "heavy+polarH", label: "Heavy and polar H" },
+            { value: "all", label: "All" },
           ]}
-          onChange={(event) => {
-            const next = event.currentTarget.value as "auto" | "achiral" | "chiral";
-            // Merging mirror images of a chiral molecule is refused; "auto" is right in every case.
-            set({ chirality: next, mirror: "auto" });
-          }}
+          onChange={(atoms) => set({ atoms })}
         />
-        <SelectField
-          label="Equivalent atoms"
-          value={draft.symmetry === false ? "off" : "on"}
+        <Segments
+          label="Mirror images"
+          value={draft.mirror ?? "auto"}
           disabled={locked}
-          choices={[
-            { value: "on", label: "May exchange" },
-            { value: "off", label: "In file order" },
+          options={[
+            { value: "auto", label: `Auto: ${autoMirror(chirality)}` },
+            { value: "merge", label: "Merge", disabled: chirality === "chiral" },
+            { value: "keep", label: "Keep" },
           ]}
-          onChange={(event) => set({ symmetry: event.currentTarget.value === "on" })}
+          help={
+            chirality === "chiral"
+              ? "The molecule counts as chiral: its mirror image is another compound."
+              : undefined
+          }
+          onChange={(mirror) => set({ mirror })}
         />
-      </div>
-    </SettingsStrip>
+        <div className="grid grid-cols-2 gap-x-6 gap-y-4 max-[24rem]:grid-cols-1 sm:col-span-2 xl:grid-cols-4">
+          {ensemble.levels.length > 0 ? (
+            <LevelSelect
+              label="Level that orders the frames"
+              levels={ensemble.levels}
+              value={draft.level ?? ""}
+              disabled={locked}
+              onChange={(level) => set({ level })}
+            />
+          ) : null}
+          {energies ? (
+            <NumberField
+              label="Energy window"
+              value={draft.window ?? null}
+              optional
+              placeholder="none"
+              min={0}
+              max={100000}
+              above
+              step={0.5}
+              unit="kcal/mol"
+              disabled={locked}
+              write={formatEnergy}
+              wrong="A window lies above 0 kcal/mol, for example 5.00; empty for none."
+              onCommit={(window) => set({ window })}
+            />
+          ) : null}
+          <SelectField
+            label="Chirality"
+            value={draft.chirality ?? "auto"}
+            disabled={locked}
+            choices={[
+              {
+                value: "auto",
+                label: `Auto: ${ensemble.chirality === "unsure" ? "chiral, unsure" : ensemble.chirality}`,
+              },
+              { value: "achiral", label: "Take as achiral" },
+              { value: "chiral", label: "Take as chiral" },
+            ]}
+            onChange={(event) => {
+              const next = event.currentTarget.value as "auto" | "achiral" | "chiral";
+              // Merging mirror images of a chiral molecule is refused; "auto" is right in every case.
+              set({ chirality: next, mirror: "auto" });
+            }}
+          />
+          <SelectField
+            label="Equivalent atoms"
+            value={draft.symmetry === false ? "off" : "on"}
+            disabled={locked}
+            choices={[
+              { value: "on", label: "May exchange" },
+              { value: "off", label: "In file order" },
+            ]}
+            onChange={(event) => set({ symmetry: event.currentTarget.value === "on" })}
+          />
+        </div>
+      </SettingsStrip>
+    </BesideField>
   );
 }

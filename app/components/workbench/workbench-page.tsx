@@ -4,6 +4,7 @@ import { href, useLocation, useNavigation, useRevalidator } from "react-router";
 import { AppShell, pageClass } from "~/components/layout/app-shell";
 import { OutsideTorsions, OutsideViewPanel } from "~/components/outside/outside-view";
 import { Button, ButtonLink } from "~/components/ui/button";
+import { BesideField } from "~/components/ui/number-field";
 import { showToast } from "~/components/ui/toast";
 import { useFocusRefuge } from "~/hooks/use-focus-refuge";
 import { hasEnded, useRunningSift } from "~/hooks/use-sift";
@@ -33,15 +34,17 @@ export interface WorkbenchData {
 
 /** Header, rail and view around the sections; one page, whatever section is open. */
 export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchData & { children: ReactNode }) {
-  const { pathname } = useLocation();
+  const { pathname, search } = useLocation();
   const section = pathname.split("/")[3] ?? "populations";
   const followed = useFollowedSift(sift);
   return (
     <WorkbenchProvider ensemble={ensemble} sift={followed} section={section} first={firstFrame(intake)}>
       <DecisionsProvider ensembleId={ensemble.id}>
-        <Frame section={section} intake={intake}>
-          {children}
-        </Frame>
+        <BesideField value={search}>
+          <Frame section={section} intake={intake}>
+            {children}
+          </Frame>
+        </BesideField>
       </DecisionsProvider>
     </WorkbenchProvider>
   );
