@@ -17,6 +17,7 @@ import {
   formatPopulation,
   formatRaw,
   formatRmsd,
+  formatRmsdBeside,
   formatSeconds,
   formatTemperature,
   formulaParts,
@@ -59,6 +60,10 @@ describe("numbers", () => {
     expect(formatRmsd(0.34561)).toBe("0.346");
     expect(formatRmsd(0.0004)).toBe("below 0.001");
     expect(formatRmsd(0)).toBe("0.000");
+    expect(formatRmsdBeside(0.1502, 0.15)).toBe("0.1502");
+    expect(formatRmsdBeside(0.14996, 0.15)).toBe("0.14996");
+    expect(formatRmsdBeside(0.15, 0.15)).toBe("0.150");
+    expect(formatRmsdBeside(0.34561, 0.15)).toBe("0.346");
     expect(formatAngle(-153.6)).toBe("\u2212154");
     expect(formatTemperature(298.15)).toBe("298.15");
     expect(formatTemperature(300)).toBe("300");

@@ -70,6 +70,19 @@ export function formatRmsd(value: Maybe): string {
   return typeof value === "number" && value > 0 && value < 0.001 ? "below 0.001" : fixed(value, 3);
 }
 
+/**
+ * RMSD in Å beside a limit: with as many more decimals as show on which side of it the value lies.
+ *
+ * @example formatRmsdBeside(0.1502, 0.15) // "0.1502"
+ */
+export function formatRmsdBeside(value: number, limit: number): string {
+  for (let digits = 3; digits < 6; digits++) {
+    if (fixed(value, digits) !== fixed(limit, digits))
+      return digits === 3 ? formatRmsd(value) : fixed(value, digits);
+  }
+  return value === limit ? formatRmsd(value) : fixed(value, 6);
+}
+
 /** Any other distance in Å, 2 decimals. */
 export function formatDistance(value: Maybe): string {
   return fixed(value, 2);

@@ -38,7 +38,16 @@ function row(over: Partial<EnsembleRow> = {}): EnsembleRow {
 }
 function done(distinct: number, shares: number[]): EnsembleRow["sift"] {
   const lowest = shares[0] ?? null;
-  return { id: "x", status: "done", progress: 1, distinct, shares, lowest, effectiveCount: shares.length };
+  return {
+    id: "x",
+    status: "done",
+    progress: 1,
+    distinct,
+    shares,
+    lowest,
+    effectiveCount: shares.length,
+    changed: [],
+  };
 }
 const names = (rows: EnsembleRow[]) => rows.map((r) => r.name);
 

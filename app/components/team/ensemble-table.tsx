@@ -130,6 +130,14 @@ function EnsembleLine({
       </Td>
       <Td tall align="right" className={WIDE}>
         {formatCount(sift?.distinct)}
+        {sift && sift.changed.length > 0 ? (
+          <div
+            className="text-xs whitespace-nowrap text-ink-3"
+            title={`Not the default settings: ${sift.changed.join(", ")}`}
+          >
+            settings changed
+          </div>
+        ) : null}
       </Td>
       <Td tall className="sm:w-44 xl:w-60">
         <StripCell row={row} />

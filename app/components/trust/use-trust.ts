@@ -4,6 +4,7 @@ import { useWorkbench } from "~/components/workbench/workbench-context";
 import { useWholeEnsemble } from "~/hooks/use-whole-ensemble";
 import type { AveragesView } from "~/lib/averages/averages-view";
 import { DEFAULT_SEED } from "~/lib/averages/uncertainty";
+import { WIDE_RMSD_TOLERANCE } from "~/lib/recipe/recipe";
 import { weigh } from "~/lib/thermo/boltzmann";
 import { chooseWeights } from "~/lib/thermo/populations";
 import { drawFigures } from "~/lib/trust/drawn-figures";
@@ -98,7 +99,11 @@ export function useTrust(
             populations: populationsOf(energies, weighed, level.energyKind, temperatureK, state.weights),
           };
         }),
-      coverage: samplingCoverage(result.kept.map((conformer) => conformer.found)),
+      // Where different shapes merge, how often each was found says nothing of shapes.
+      coverage:
+        sift.recipe.rmsdTolerance > WIDE_RMSD_TOLERANCE
+          ? null
+          : samplingCoverage(result.kept.map((conformer) => conformer.found)),
       searches: lone ? null : compareSearches(searches),
       hands: handsFound(result).flatMap((count) => {
         const place = weighed.places.indexOf(count.place);

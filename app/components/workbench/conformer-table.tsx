@@ -121,8 +121,11 @@ export function ConformerTable({
     const first = name === "population" || name === "found";
     return { column: name, descending: now ? !now.descending : first };
   };
+  // Without energies the column of dashes orders nothing.
+  const inFileOrder = level === null && (state.sort ?? NATURAL).column === "energy";
   const direction = (name: SortColumn) => {
     const now = state.sort ?? NATURAL;
+    if (name === "energy" && inFileOrder) return null;
     return now.column === name ? (now.descending ? ("down" as const) : ("up" as const)) : null;
   };
   const heads = headsOf(measure, reference?.name ?? "c1", level !== null);
@@ -178,7 +181,7 @@ export function ConformerTable({
         ) : null}
       </BlockHead>
       <p className="sr-only" role="status">
-        {sortWords(state.sort ?? NATURAL, heads)}
+        {inFileOrder ? "In file order." : sortWords(state.sort ?? NATURAL, heads)}
       </p>
       {/* The box scrolls only when all rows are asked for; before, the page does. */}
       <div

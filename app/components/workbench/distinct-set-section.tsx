@@ -9,9 +9,9 @@ import { TextButton, TextLink } from "~/components/ui/text-link";
 import { makeCurrent, useNewSift } from "~/hooks/use-sift";
 import { useTimeLeft } from "~/hooks/use-time-left";
 import { capital, fixed, formatPercent, formatRmsd, formatSeconds, plural, withUnit } from "~/lib/format";
-import type { SiftRequest } from "~/lib/recipe/recipe";
+import { type SiftRecipe, type SiftRequest, WIDE_RMSD_TOLERANCE } from "~/lib/recipe/recipe";
 import { distinctFinding, joinWords, nearMirror } from "~/lib/workbench/findings";
-import { recipeLine, requestOf } from "~/lib/workbench/recipe-words";
+import { defaultsOf, recipeLine, requestOf, settingsApart } from "~/lib/workbench/recipe-words";
 import type { ActAnswer } from "./act-answer";
 import { DistinctTable } from "./distinct-table";
 import { FindFrame } from "./find-frame";
@@ -36,8 +36,7 @@ export function DistinctSetSection() {
   const [before, setBefore] = useState<{
     id: string;
     kept: number;
-    tolerance: number;
-    request: SiftRequest;
+    recipe: SiftRecipe;
   } | null>(null);
   // Settings that were cancelled go back to those of the set that is shown.
   const [cancelled, setCancelled] = useState(0);
@@ -60,8 +59,7 @@ export function DistinctSetSection() {
       setBefore({
         id: sift.id,
         kept: result.kept.length,
-        tolerance: sift.recipe.rmsdTolerance,
-        request: requestOf(sift.recipe),
+        recipe: sift.recipe,
       });
     const replace = gesture.current === "open";
     gesture.current = "open";
@@ -124,11 +122,11 @@ export function DistinctSetSection() {
           </div>
           {before !== null && before.id !== sift.id ? (
             <p className="mt-1 text-ink-2">
-              Before: {plural(before.kept, "shape")} at {withUnit(fixed(before.tolerance, 3), "Å")}.{" "}
+              Before: {plural(before.kept, "shape")}, {beforeWords(before.recipe, sift.recipe)}.{" "}
               <TextButton
                 onClick={() => {
                   setBefore(null);
-                  makeCurrent(ensemble.id, before.request);
+                  makeCurrent(ensemble.id, requestOf(before.recipe));
                   change({ sift: before.id });
                 }}
               >
@@ -137,6 +135,9 @@ export function DistinctSetSection() {
             </p>
           ) : null}
           <OutdatedNote onAgain={() => onAsk(request, true)} busy={asked !== null} />
+          <NotDefault
+            onBack={ensemble.mayCompute ? () => onAsk(requestOf(defaultsOf(sift.recipe)), true) : null}
+          />
           <SiftSettings
             key={cancelled}
             ensemble={ensemble}
@@ -169,6 +170,7 @@ export function DistinctSetSection() {
                 : "You read this team’s work: move the tolerances to see what they would keep. It is counted in this browser, and nothing is stored; an analyst or an owner can make that the set."}
             </p>
           )}
+          <WideTolerance />
           <MirrorWarning />
           <ToleranceBlock
             draft={draft}
@@ -201,6 +203,43 @@ export function DistinctSetSection() {
         </>
       )}
     </section>
+  );
+}
+
+/** What the set before was made with, as far as it differs from the one that is shown. */
+function beforeWords(before: SiftRecipe, now: SiftRecipe): string {
+  const apart = settingsApart(before, now).map(({ is }) => is);
+  // Frames held, released or read again since: the same settings on other data.
+  return apart.length > 0 ? joinWords(apart) : "with the same settings on other data";
+}
+
+/** The last settings asked for are the ensemble's own, for everybody: where they are not the usual ones it is said. */
+function NotDefault({ onBack }: { onBack: (() => void) | null }) {
+  const { sift, ensemble } = useWorkbench();
+  if (sift === null) return null;
+  const apart = settingsApart(sift.recipe, defaultsOf(sift.recipe));
+  if (apart.length === 0) return null;
+  const back = joinWords(apart.map(({ was }) => was));
+  return (
+    <p className="mt-1 text-ink-2">
+      Not the default settings: {joinWords(apart.map(({ is }) => is))}.{" "}
+      {ensemble.role === "guest" ? "" : "Those asked for last hold for everybody who opens this ensemble. "}
+      {onBack === null ? `The default: ${back}.` : null}
+      {onBack === null ? null : <TextButton onClick={onBack}>Back to the defaults: {back}</TextButton>}
+    </p>
+  );
+}
+
+/** A tolerance that merges what nobody would call one shape is taken, and said. */
+function WideTolerance() {
+  const { sift } = useWorkbench();
+  if (sift === null || sift.recipe.rmsdTolerance <= WIDE_RMSD_TOLERANCE) return null;
+  return (
+    <Note tone="remark" className="mt-4">
+      An RMSD tolerance of {withUnit(fixed(sift.recipe.rmsdTolerance, 3), "Å")} is wide: above{" "}
+      {withUnit(String(WIDE_RMSD_TOLERANCE), "Å")} different shapes merge into one (common practice, no
+      source). Populations and what is found complete then say little.
+    </Note>
   );
 }
 

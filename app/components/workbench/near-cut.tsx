@@ -6,7 +6,7 @@ import { TextButton } from "~/components/ui/text-link";
 import { setLaidOver } from "~/hooks/use-laid-over";
 import type { NearnessAnswer } from "~/hooks/whole-ensemble-protocol";
 import type { NearPair } from "~/lib/align/nearness";
-import { formatEnergy, formatRmsd, plural, withUnit } from "~/lib/format";
+import { formatEnergy, formatRmsd, formatRmsdBeside, plural, withUnit } from "~/lib/format";
 import { farthestRepeats, nearestOthers } from "~/lib/workbench/nearness";
 import { useWorkbench } from "./workbench-context";
 
@@ -98,7 +98,7 @@ function PairRow({
   energy: number | null;
   children: ReactNode;
 }) {
-  const { show, selected } = useWorkbench();
+  const { show, selected, sift } = useWorkbench();
   const shown = selected.length === 2 && frames.every((frame) => selected.includes(frame));
   return (
     <Tr selected={shown}>
@@ -116,7 +116,7 @@ function PairRow({
       </Td>
       <Td align="right">
         {exact ? "" : "to "}
-        {formatRmsd(rmsd)}
+        {sift === null ? formatRmsd(rmsd) : formatRmsdBeside(rmsd, sift.recipe.rmsdTolerance)}
       </Td>
       <Td align="right">{formatEnergy(energy)}</Td>
     </Tr>

@@ -267,16 +267,18 @@ function EndLabels({
   const sorted = [...ends].sort((a, b) => a.y - b.y);
   const wide = plot.right - plot.x(widest) >= END_LABEL_PX;
   const first = sorted[0];
+  // Labels end above the axis, whose ticks they would cover, and begin below the links over the picture.
+  const lowest = plot.bottom - 4 - 14 * (sorted.length - 1) - 10;
   let last = Number.NEGATIVE_INFINITY;
   return (
     <g>
       {wide || first === undefined ? null : (
-        <ChartText x={plot.x(widest) + 6} y={first.y - 10} halo>
+        <ChartText x={plot.x(widest) + 6} y={Math.max(plot.top - 6, Math.min(first.y - 10, lowest - 4))} halo>
           kcal/mol
         </ChartText>
       )}
-      {sorted.map((end) => {
-        last = Math.max(end.y - 6, last + 14);
+      {sorted.map((end, k) => {
+        last = Math.max(plot.top, Math.min(Math.max(end.y - 6, last + 14), lowest + 14 * k));
         return (
           <ChartText
             key={end.tolerance}

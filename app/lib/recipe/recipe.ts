@@ -3,6 +3,8 @@ import { z } from "zod";
 /** Starting values of the product's own choice (methods page, section 6), not published thresholds. */
 export const DEFAULT_ENERGY_TOLERANCE_KCAL = 0.15;
 export const DEFAULT_RMSD_TOLERANCE = 0.2;
+/** Å; above it conformers that nobody would call one shape merge (common practice, no source). */
+export const WIDE_RMSD_TOLERANCE = 2;
 
 /** 0 keeps the lowest frame and those equal to it. */
 const window = z.number().finite().nonnegative();

@@ -92,6 +92,9 @@ describe("findings", () => {
     expect(titles({ tolerance: { at: 0.2, now: 31, half: [0.1, 55], double: [0.4, 31] } })).toContain(
       "know: The number of shapes hangs on the RMSD tolerance.",
     );
+    expect(titles({ tolerance: { at: 99, now: 1, half: [49.5, 1], double: [198, 1] } })).toContain(
+      "settle: The RMSD tolerance is so wide that different shapes merge.",
+    );
     expect(titles({ tolerance: { at: 0.2, now: 31, half: [0.1, 31], double: [0.4, 30] } })).toContain(
       "nothing: The count does not hang on the tolerance.",
     );

@@ -11,6 +11,7 @@ import {
   withUnit,
 } from "../format.ts";
 import { populationOverlap } from "../levels/overlap.ts";
+import { WIDE_RMSD_TOLERANCE } from "../recipe/recipe.ts";
 import type { EnergyKind } from "../views.ts";
 import { joinWords, shareWords } from "../workbench/findings.ts";
 import type { PopulationError } from "./population-error.ts";
@@ -398,6 +399,16 @@ function toleranceFindings({ tolerance }: TrustInput): TrustFinding[] {
   if (tolerance === null) return [];
   const { at, now, half, double } = tolerance;
   const words = `${formatCount(now)} shapes at ${fixed(at, 2)} Å, ${formatCount(half[1])} at ${fixed(half[0], 2)} Å, ${formatCount(double[1])} at ${fixed(double[0], 2)} Å.`;
+  if (at > WIDE_RMSD_TOLERANCE) {
+    return [
+      {
+        kind: "settle",
+        title: "The RMSD tolerance is so wide that different shapes merge.",
+        reason: `${words} Above ${WIDE_RMSD_TOLERANCE} Å that is to be expected (common practice, no source); how complete the search is cannot be told then.`,
+        act: { type: "section", path: "distinct-set", label: "Look at the tolerance", note: "" },
+      },
+    ];
+  }
   const steady = Math.abs(half[1] - now) <= STEADY * now && Math.abs(double[1] - now) <= STEADY * now;
   if (steady) {
     return [

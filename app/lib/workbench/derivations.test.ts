@@ -22,7 +22,7 @@ import {
 import { frameStrip } from "./frame-strip.ts";
 import { framesWords, groupFrames, reasonWords } from "./intake-lists.ts";
 import { energyLadder, mergeLabels } from "./ladder.ts";
-import { recipeLine, requestOf } from "./recipe-words.ts";
+import { defaultsOf, recipeLine, requestOf, settingsApart } from "./recipe-words.ts";
 import { clickSelection } from "./selection.ts";
 import { sortRows } from "./sort-rows.ts";
 import { stations } from "./stations.ts";
@@ -568,6 +568,23 @@ describe("lists of intake", () => {
   });
 });
 
+describe("settings that differ", () => {
+  test("are named one by one, as they are and as they would be by default", () => {
+    const changed = { ...recipe, rmsdTolerance: 1.2, atoms: "all" as const, window: 5 };
+    expect(settingsApart(changed, defaultsOf(changed))).toEqual([
+      { is: `RMSD tolerance 1.200${NBSP}Å`, was: `RMSD tolerance 0.200${NBSP}Å` },
+      { is: `energy window 5.00${NBSP}kcal/mol`, was: "no energy window" },
+      { is: "all atoms", was: "heavy atoms and polar H" },
+    ]);
+    expect(settingsApart(defaultsOf(changed), defaultsOf(changed))).toEqual([]);
+  });
+
+  test("chirality by choice goes back to what was found, with its mirror images", () => {
+    const taken = { ...defaultsOf(recipe), chirality: "achiral" as const, chiralityOverridden: true };
+    expect(defaultsOf(taken)).toMatchObject({ chirality: "chiral", mirror: "keep" });
+  });
+});
+
 describe("stations of the course line", () => {
   const sift: SiftView = {
     id: "eeeeeeeeeeeeeeee",
@@ -593,6 +610,11 @@ describe("stations of the course line", () => {
       "hand-over: CSV, XYZ, SDF, JSON, done",
       "logbook: who did what, done",
     ]);
+  });
+
+  test("a tolerance that merges different shapes leaves nothing to say of gaps", () => {
+    const wide = { ...sift, recipe: { ...recipe, rmsdTolerance: 99 } };
+    expect(figures(ensemble, wide)).toContain("trust: wide tolerance, care");
   });
 
   test("before there are results they say what comes first", () => {

@@ -1,5 +1,10 @@
 import { formatEnergy, formatRmsd, formatTemperature, withUnit } from "../format.ts";
-import type { SiftRecipe, SiftRequest } from "../recipe/recipe.ts";
+import {
+  DEFAULT_ENERGY_TOLERANCE_KCAL,
+  DEFAULT_RMSD_TOLERANCE,
+  type SiftRecipe,
+  type SiftRequest,
+} from "../recipe/recipe.ts";
 import type { EnergyKind } from "../views.ts";
 
 /** Atom sets as the page names them. */
@@ -62,4 +67,51 @@ export function requestOf(recipe: SiftRecipe): SiftRequest {
 /** What "auto" does with mirror images. */
 export function autoMirror(chirality: "achiral" | "chiral"): "merge" | "keep" {
   return chirality === "achiral" ? "merge" : "keep";
+}
+
+/** The settings that every sift starts from, on the level of this one: whoever chose nothing gets these. */
+export function defaultsOf(recipe: SiftRecipe): SiftRecipe {
+  const other = recipe.chirality === "achiral" ? "chiral" : "achiral";
+  const chirality = recipe.chiralityOverridden ? other : recipe.chirality;
+  return {
+    ...recipe,
+    window: null,
+    energyTolerance: recipe.level === null ? null : DEFAULT_ENERGY_TOLERANCE_KCAL,
+    rmsdTolerance: DEFAULT_RMSD_TOLERANCE,
+    atoms: "heavy+polarH",
+    symmetry: true,
+    mirror: autoMirror(chirality),
+    chirality,
+    chiralityOverridden: false,
+  };
+}
+
+/**
+ * What one recipe has that another has not, setting by setting.
+ *
+ * @returns each as it is in `recipe`, and as it is in `other`
+ * @example settingsApart({ ...recipe, atoms: "all" }, recipe) // [{ is: "all atoms", was: "heavy atoms" }]
+ */
+export function settingsApart(recipe: SiftRecipe, other: SiftRecipe): { is: string; was: string }[] {
+  const both = (words: (one: SiftRecipe) => string) => ({ is: words(recipe), was: words(other) });
+  const pairs = [
+    both((one) => (one.levelName === null ? "no energies, file order" : `${one.levelName} energies`)),
+    both(({ rmsdTolerance }) => `RMSD tolerance ${withUnit(formatRmsd(rmsdTolerance), "Å")}`),
+    // Without energies there is none to choose: the level says it.
+    recipe.level === null || other.level === null
+      ? null
+      : both(({ energyTolerance }) =>
+          energyTolerance === null
+            ? "no energy tolerance"
+            : `energy tolerance ${withUnit(formatEnergy(energyTolerance), "kcal/mol")}`,
+        ),
+    both(({ window }) =>
+      window === null ? "no energy window" : `energy window ${withUnit(formatEnergy(window), "kcal/mol")}`,
+    ),
+    both(({ atoms }) => ATOM_SET_WORDS[atoms]),
+    both(({ symmetry }) => (symmetry ? "symmetry on" : "symmetry off")),
+    both(({ mirror }) => (mirror === "merge" ? "mirror images merged" : "mirror images kept apart")),
+    both(({ chirality }) => `taken as ${chirality}`),
+  ];
+  return pairs.flatMap((pair) => (pair !== null && pair.is !== pair.was ? [pair] : []));
 }

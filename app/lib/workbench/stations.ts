@@ -1,4 +1,5 @@
 import { formatCount, formatPercent, formatTemperature, plural, withUnit } from "../format.ts";
+import { WIDE_RMSD_TOLERANCE } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { samplingCoverage } from "../trust/sampling-coverage.ts";
 import type { EnsembleView, SiftView } from "../views.ts";
@@ -44,15 +45,22 @@ export function stations(ensemble: EnsembleView, sift: SiftView | null, temperat
         ? ({ figure: "no property", state: "todo" } as const)
         : after(plural(ensemble.properties, "property", "properties"))),
     },
-    { path: "trust", name: "Trust", ...trustStation(ready, waits) },
+    { path: "trust", name: "Trust", ...trustStation(ready, waits, sift) },
     { path: "hand-over", name: "Hand-over", ...after("CSV, XYZ, SDF, JSON") },
     { path: "logbook", name: "Logbook", figure: "who did what", state: "done" },
   ];
 }
 
-function trustStation(ready: SiftResult | null, waits: string): Pick<StationView, "figure" | "state"> {
+function trustStation(
+  ready: SiftResult | null,
+  waits: string,
+  sift: SiftView | null,
+): Pick<StationView, "figure" | "state"> {
   const coverage = samplingCoverage((ready?.kept ?? []).map(({ found }) => found));
   if (coverage === null) return { figure: waits, state: "todo" };
+  // Merged into one, even different shapes were all found often.
+  const wide = sift !== null && sift.recipe.rmsdTolerance > WIDE_RMSD_TOLERANCE;
+  if (wide) return { figure: "wide tolerance", state: "care" };
   // All found once says nothing, and none found once is no proof that nothing is missing.
   const figure =
     coverage.once === coverage.hits

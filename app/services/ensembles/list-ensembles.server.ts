@@ -2,6 +2,7 @@ import { and, asc, count, desc, eq, inArray, isNull, or } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, ensembleFiles, ensembles, frames, series } from "../../db/schema.server.ts";
 import type { EnsembleRow } from "../../lib/views.ts";
+import { defaultsOf, settingsApart } from "../../lib/workbench/recipe-words.ts";
 import { type Actor, accessTeam, type Grant } from "../auth/access.server.ts";
 import { chooseSift, findSiftsOf } from "../sifts/find-sift.server.ts";
 
@@ -124,6 +125,7 @@ export async function listEnsembles(options: {
               shares: chosen.summary?.shares ?? [],
               lowest: chosen.summary?.lowest ?? null,
               effectiveCount: chosen.summary?.effectiveCount ?? null,
+              changed: settingsApart(chosen.recipe, defaultsOf(chosen.recipe)).map(({ is }) => is),
             },
       changedAt: row.changedAt.toISOString(),
     };
