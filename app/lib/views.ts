@@ -117,10 +117,21 @@ export interface IntakeView {
   questions: IntakeQuestion[];
   /** The number that was named as the energy, with the files or since; null where the only one was taken. */
   energyFrom: string | null;
+  /** Numbers of the first frames that can be named as the energy, the likeliest first. */
+  numbers: NumberView[];
   /** How the energies of the files are read as things stand, whoever said so and when. */
   inForce: EnergiesInForce[];
   /** Ensembles that were made of held frames, as far as they still exist and the reader may see them. */
   became: { ensembleId: string; name: string; frames: number[] }[];
+}
+
+/** A number of comment lines or data fields, as a request names it and as a person does. */
+export interface NumberView {
+  /** "key:NAME", "number:N" or "field:NAME". */
+  from: string;
+  name: string;
+  /** As written in the first frame that has it. */
+  example: string | null;
 }
 
 /** Energies that the files hold themselves: which number they are, and what was stated or read of it. */

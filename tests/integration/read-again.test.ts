@@ -84,7 +84,7 @@ describe("reading again from the page of intake", () => {
     // The form starts from what is in force, the number too.
     const page = await (await call(`/ensembles/${id}/intake`, { cookie: analyst.cookie })).text();
     expect(page).toContain("How the files are read");
-    expect(page).toMatch(/<input[^>]*name="energyFrom"[^>]*value="key:energy"/);
+    expect(page).toMatch(/name="energyFrom">.*<option value="key:energy" selected=""/);
   });
 
   it("refuses what is no answer, in words, and changes nothing", async () => {

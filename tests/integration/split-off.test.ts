@@ -53,6 +53,18 @@ const entries = (ensembleId: string, type: string) =>
     .from(logbook)
     .where(and(eq(logbook.ensembleId, ensembleId), eq(logbook.type, type)));
 
+describe("which of two molecules is the ensemble", () => {
+  it("is answered once the other one became an ensemble of its own", async () => {
+    const content = frame("two energy=-1.5") + frame("energy=-1.4") + frame("energy=-76.1", WATER);
+    const parent = await takenIn(lab.token, [{ name: "two.xyz", content }], fields);
+    expect(parent.intake.questions).toMatchObject([{ id: "group" }]);
+    await splitOff({ actor, ensembleId: parent.id, frame: 3 });
+    const { intake } = await describeEnsemble(lab.team.id, parent.id);
+    expect(intake).toMatchObject({ accepted: 2, held: 1, questions: [] });
+    expect(await entries(parent.id, "answer")).toMatchObject([{ data: { question: "group" } }]);
+  });
+});
+
 describe("held frames of something else", () => {
   it("become an ensemble with their bytes, their energies and their series; both logbooks say so", async () => {
     const parent = await takenIn(lab.token, [{ name: "mix.xyz", content: mixture("own") }], {

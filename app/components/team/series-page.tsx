@@ -228,7 +228,14 @@ function NoEnsembles({ data, onFiles }: { data: SeriesPageData; onFiles: (files:
           </>
         }
       >
-        Drop files anywhere on this page, or choose them.
+        <span className="noscript:hidden">Drop files anywhere on this page, or choose them.</span>
+        <span className="hidden noscript:inline">
+          Adding files needs script in the browser, or{" "}
+          <a className={linkClass} href={href("/api")}>
+            the API
+          </a>
+          .
+        </span>
         {example
           ? " The finished one shows what becomes of them. Its temperature, window and tolerances can be moved there; nothing is kept."
           : ""}

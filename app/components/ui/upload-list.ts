@@ -1,4 +1,5 @@
 import { formatBytes, formatCount, formatSeconds, plural, withUnit } from "../../lib/format.ts";
+import { inPageWords } from "../../lib/workbench/page-words.ts";
 
 /** What became of one upload. The clock comes in with the actions. */
 export type UploadState = "waiting" | "sending" | "reading" | "done" | "refused" | "failed" | "cancelled";
@@ -174,7 +175,7 @@ export function uploadWords(upload: Upload): string {
     case "failed":
       return "The connection was lost. Nothing was kept; the file can be sent again.";
     case "refused":
-      return upload.refusal?.detail ?? "Nothing was kept.";
+      return inPageWords(upload.refusal?.detail ?? "Nothing was kept.");
   }
 }
 

@@ -1,5 +1,6 @@
 import { href, Link } from "react-router";
 import { formatCount } from "~/lib/format";
+import { inPageWords } from "~/lib/workbench/page-words";
 import { Badge } from "./badge";
 import { ProgressBar } from "./progress-bar";
 import { linkClass, TextButton } from "./text-link";
@@ -96,7 +97,7 @@ function Faults({ refusal }: { refusal: Refusal }) {
       {faults.slice(0, SHOWN_FAULTS).map((fault, i) => (
         <li key={i}>
           {faultPlace(fault)}
-          {fault.message}
+          {inPageWords(fault.message)}
         </li>
       ))}
       {more > 0 ? <li className="text-ink-3">{formatCount(more)} more of this kind</li> : null}

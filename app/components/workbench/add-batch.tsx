@@ -1,4 +1,4 @@
-import { useState } from "react";
+import { useId, useState } from "react";
 import { href, useRevalidator } from "react-router";
 import { DropOverlay, Dropzone, usePageDrop } from "~/components/ui/dropzone";
 import { TextField } from "~/components/ui/field";
@@ -7,6 +7,7 @@ import { SelectField } from "~/components/ui/select-field";
 import { UploadList } from "~/components/ui/upload-row";
 import { useUploads } from "~/components/ui/use-uploads";
 import { ENERGY_UNITS } from "~/lib/units";
+import type { NumberView } from "~/lib/views";
 import { useWorkbench } from "./workbench-context";
 
 const UNITS = [
@@ -16,8 +17,9 @@ const UNITS = [
 ];
 
 /** A second search or a further batch of the same molecule, from the whole page or from the dialog. */
-export function AddBatch() {
+export function AddBatch({ numbers }: { numbers: readonly NumberView[] }) {
   const { ensemble } = useWorkbench();
+  const list = useId();
   const revalidator = useRevalidator();
   const uploads = useUploads(() => void revalidator.revalidate());
   const [fields, setFields] = useState({ name: "", level: "", energyUnit: "", energyFrom: "" });
@@ -70,9 +72,16 @@ export function AddBatch() {
             label="Which number is the energy"
             value={fields.energyFrom}
             maxLength={200}
-            placeholder="key:NAME, number:N, field:NAME or none"
+            list={list}
+            help="Empty: as in the frames that are here. The list has their numbers; for another write key: and its name before “=” or “:”, field: and the name of the data field, number: and its place in the comment line, or none."
             onChange={(event) => set("energyFrom")(event.currentTarget.value)}
           />
+          <datalist id={list}>
+            {numbers.map(({ from, name, example }) => (
+              <option key={from} value={from} label={example === null ? name : `${name} (${example})`} />
+            ))}
+            <option value="none" label="no energies" />
+          </datalist>
         </div>
       </details>
       <div className="mt-4 empty:hidden">

@@ -2,6 +2,7 @@ import { type FormEvent, useRef, useState } from "react";
 import { href, useFetcher } from "react-router";
 import { Button, SubmitButton } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
+import { WithFormulas } from "~/components/ui/formula";
 import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
 import { ABSENT, fixed, formatEnergy, withUnit } from "~/lib/format";
 import { readAskId } from "~/lib/intake/reading-questions";
@@ -82,7 +83,9 @@ function AskCard({
           mayAnswer ? (
             <>
               {/* Never disabled: without script it sends what was chosen, and the server says what is missing. */}
-              <SubmitButton pending={fetcher.state !== "idle"}>{buttonWords(question, chosen)}</SubmitButton>
+              <SubmitButton pending={fetcher.state !== "idle"}>
+                <WithFormulas>{buttonWords(question, chosen)}</WithFormulas>
+              </SubmitButton>
               {refused || (missing && !named) ? (
                 <span className="text-danger" role="alert">
                   {refused ?? "Choose one of them first."}
@@ -116,7 +119,7 @@ function AskCard({
                   setChoice(id);
                   setMissing(false);
                 }}
-                title={option.text}
+                title={<WithFormulas>{option.text}</WithFormulas>}
                 reason={option.detail}
               >
                 <OptionFigures question={question} option={option} />
@@ -132,6 +135,7 @@ function AskCard({
 function buttonWords(question: IntakeQuestion, chosen: Option | undefined): string {
   if (question.code === "level") return "Name the level";
   if (!chosen) return "Confirm the choice";
+  if (question.id === "group") return `${chosen.proposed ? "Keep" : "Take"} ${chosen.text}`;
   if (readAskId(question.id)) return chosen.id === "hold" ? "Keep them held" : chosen.text;
   if (chosen.id === "none") return "Take the structures without energies";
   return question.code === "energy-unit" ? `Confirm ${chosen.text}` : `Use ${chosen.text}`;
@@ -140,6 +144,7 @@ function buttonWords(question: IntakeQuestion, chosen: Option | undefined): stri
 function footWords(question: IntakeQuestion): string {
   if (question.code === "energy-unit") return "The factor is printed in every report.";
   if (question.code === "level") return "It keeps one hue and marker wherever it appears.";
+  if (question.id === "group") return "The others stay held; each can become an ensemble of its own.";
   if (readAskId(question.id)) return "The files are read again with this answer.";
   return "One rule for all frames.";
 }

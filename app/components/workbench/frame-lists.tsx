@@ -10,6 +10,7 @@ import type { IntakeMessage } from "~/lib/intake/report";
 import { canBeSplitOff } from "~/lib/intake/split-name";
 import type { FileView, FrameView, IntakeView } from "~/lib/views";
 import { type FrameGroup, framesWords, groupFrames, reasonWords } from "~/lib/workbench/intake-lists";
+import { inPageWords } from "~/lib/workbench/page-words";
 import { HoldFrame, ReleaseFrame } from "./decide-frame";
 import { SplitOff } from "./split-off";
 import { useWorkbench } from "./workbench-context";
@@ -259,12 +260,12 @@ export function FileMessages({
           <li key={k} className="border-b border-rule py-3">
             <p>
               {files.length > 1 ? `${message.file}: ` : ""}
-              <WithFormulas>{message.message}</WithFormulas>
+              <WithFormulas>{inPageWords(message.message)}</WithFormulas>
               {message.found ? <span className="text-ink-3"> Found: “{message.found}”.</span> : null}
             </p>
             {message.hint || message.line ? (
               <p className="text-xs text-ink-3">
-                {[message.line ? `Line ${formatCount(message.line)}.` : null, message.hint]
+                {[message.line ? `Line ${formatCount(message.line)}.` : null, inPageWords(message.hint ?? "")]
                   .filter(Boolean)
                   .join(" ")}
               </p>

@@ -72,7 +72,9 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
         <HeldList intake={intake} />
         <RemarkedList frames={intake.remarked} />
       </div>
-      {ensemble.mayCompute && !(asks && ensemble.accepted === 0) ? <AddBatch /> : null}
+      {ensemble.mayCompute && !(asks && ensemble.accepted === 0) ? (
+        <AddBatch numbers={intake.numbers} />
+      ) : null}
       <FileMessages messages={intake.messages} files={ensemble.files} />
       <section className="mt-9 print:hidden">
         <h3 className="text-sm font-semibold">Levels and tables</h3>

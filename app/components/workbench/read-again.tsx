@@ -4,9 +4,10 @@ import { SubmitButton } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
 import { SelectField } from "~/components/ui/select-field";
 import { showToast } from "~/components/ui/toast";
-import { capital } from "~/lib/format";
+import { capital, MINUS } from "~/lib/format";
 import { ENERGY_UNITS } from "~/lib/units";
 import type { IntakeView } from "~/lib/views";
+import { inPageWords } from "~/lib/workbench/page-words";
 import { ENERGY_KIND_WORDS } from "~/lib/workbench/recipe-words";
 import type { ActAnswer } from "./act-answer";
 import { useWorkbench } from "./workbench-context";
@@ -52,7 +53,7 @@ export function ReadAgain({ intake }: { intake: IntakeView }) {
           <SubmitButton pending={fetcher.state !== "idle"}>Read again</SubmitButton>
           {answer?.message !== undefined && fetcher.state === "idle" ? (
             <span role="alert" className="text-danger">
-              {answer.message}
+              {inPageWords(answer.message)}
             </span>
           ) : null}
         </div>
@@ -62,6 +63,22 @@ export function ReadAgain({ intake }: { intake: IntakeView }) {
 }
 
 const READ_AGAIN = "The files were read again with these answers; the logbook names those before.";
+
+/** Numbers of the first frames, and the one that is named now wherever it stands. */
+function numberChoices({ numbers, energyFrom }: IntakeView) {
+  const found = numbers.map(({ from, name, example }) => ({
+    value: from,
+    label: example === null ? name : `${name} (${example.replaceAll("-", MINUS)})`,
+  }));
+  const named =
+    energyFrom !== null && energyFrom !== "none" && !numbers.some(({ from }) => from === energyFrom);
+  return [
+    { value: "", label: "the only one there is, else ask" },
+    ...found,
+    ...(named ? [{ value: energyFrom, label: energyFrom.slice(energyFrom.indexOf(":") + 1) }] : []),
+    { value: "none", label: "none: take the structures without energies" },
+  ];
+}
 
 /** As the ensemble was read until now, where that is known. */
 function AnswerFields({ intake }: { intake: IntakeView }) {
@@ -83,15 +100,12 @@ function AnswerFields({ intake }: { intake: IntakeView }) {
         defaultValue={level?.name ?? ""}
       />
       <SelectField label="Unit of the energies" name="energyUnit" choices={UNITS} defaultValue={unit} />
-      <TextField
+      <SelectField
         label="Which number is the energy"
         name="energyFrom"
-        maxLength={200}
-        autoComplete="off"
-        spellCheck={false}
+        choices={numberChoices(intake)}
         defaultValue={intake.energyFrom ?? ""}
-        placeholder="key:NAME, number:N, field:NAME or none"
-        help="Empty: the only one there is, else it is asked."
+        help="With its value in the first frame that has it. One rule for all frames."
       />
       <SelectField
         label="Kind of the energies"

@@ -7,6 +7,7 @@ import type { HoldReason, IntakeMessage, IntakeQuestion, QuestionOption } from "
 import { splitFrames } from "../../lib/logbook/entries.ts";
 import type { EnergiesInForce, FrameView, IntakeView } from "../../lib/views.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
+import { numbersOfFiles } from "./numbers-of-files.server.ts";
 
 /** Frames of one state that the page lists; the strip shows all. */
 const LISTED = 500;
@@ -156,7 +157,7 @@ async function findBecame(grant: Grant, ensembleId: string): Promise<IntakeView[
 export async function loadIntake(options: { actor: Actor; ensembleId: string }): Promise<IntakeView> {
   const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
   const { ensembleId } = grant;
-  const [strip, held, remarked, messages, asked, own, inForce, became] = await Promise.all([
+  const [strip, held, remarked, messages, asked, own, inForce, became, numbers] = await Promise.all([
     intakeStrip(ensembleId),
     findFrames(ensembleId, "held"),
     findFrames(ensembleId, "remarked"),
@@ -165,9 +166,10 @@ export async function loadIntake(options: { actor: Actor; ensembleId: string }):
     db.select({ answers: ensembles.answers }).from(ensembles).where(eq(ensembles.id, ensembleId)),
     energiesInForce(ensembleId),
     findBecame(grant, ensembleId),
+    numbersOfFiles(ensembleId),
   ]);
   const waiting = strip.split("w").length - 1;
   const answered = asked.find(({ code }) => code === "energy-from")?.answered;
   const energyFrom = answered ?? own[0]?.answers.energyFrom ?? null;
-  return { strip, held, remarked, waiting, messages, questions: asked, energyFrom, inForce, became };
+  return { strip, held, remarked, waiting, messages, questions: asked, energyFrom, numbers, inForce, became };
 }

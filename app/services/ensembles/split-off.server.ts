@@ -1,16 +1,19 @@
 import { Readable } from "node:stream";
 import { and, asc, eq, isNull, sql } from "drizzle-orm";
 import { db, inTransaction } from "../../db/client.server.ts";
-import { columns, ensembleFiles, ensembles, frames, series } from "../../db/schema.server.ts";
+import { columns, ensembleFiles, ensembles, frames, logbook, series } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { canBeSplitOff, splitName, splitWords } from "../../lib/intake/split-name.ts";
+import { splitFrames } from "../../lib/logbook/entries.ts";
 import { FrameCutter, type FramePlace } from "../../lib/text/cut-frames.ts";
 import { type Actor, accessEnsemble, accessTeam, type Grant } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
+import { answerQuestions } from "./answer-questions.server.ts";
 import type { TakenIn } from "./finish-upload.server.ts";
+import { findQuestions } from "./load-intake.server.ts";
 import { openFile } from "./open-file.server.ts";
 import type { FormPart, FormReader } from "./read-multipart.server.ts";
 import { readSource } from "./source-writer.server.ts";
@@ -227,5 +230,28 @@ export async function splitOff(options: {
       data: { ensembleId: at.ensembleId, name: parent.name, frames: named, count },
     });
   });
+  await closeMolecules(options.actor, at);
   return { ensembleId: taken.ensembleId, name, frames: count, created: true };
+}
+
+/** Where every other molecule became an ensemble of its own, the one that was taken is the answer to which it is. */
+async function closeMolecules(actor: Actor, at: At): Promise<void> {
+  const asked = (await findQuestions(at.ensembleId)).find(({ id }) => id === "group");
+  const proposed = asked?.options.find((option) => option.proposed);
+  if (asked === undefined || asked.answered !== undefined || proposed === undefined) return;
+  const entries = await db
+    .select({ data: logbook.data })
+    .from(logbook)
+    .where(and(eq(logbook.ensembleId, at.ensembleId), eq(logbook.type, "split-off")));
+  const made = new Set(
+    entries
+      .flatMap(({ data }) => splitFrames.safeParse(data).data?.frames ?? [])
+      .map((frame) => `frame:${frame}`),
+  );
+  if (!asked.options.every(({ id }) => id === proposed.id || made.has(id))) return;
+  await answerQuestions({
+    actor,
+    ensembleId: at.ensembleId,
+    answers: [{ id: "group", option: proposed.id }],
+  });
 }
