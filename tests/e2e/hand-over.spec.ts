@@ -5,7 +5,16 @@ import os from "node:os";
 import path from "node:path";
 import { promisify } from "node:util";
 import type { Browser, Page } from "@playwright/test";
-import { enter, expect, expectAccessible, hydrated, letterLink, signUp, test } from "./base";
+import {
+  enter,
+  expect,
+  expectAccessible,
+  expectNoSideways,
+  hydrated,
+  letterLink,
+  signUp,
+  test,
+} from "./base";
 
 const FILE = path.join(import.meta.dirname, "../../fixtures/reference/ensembles/difluoroethane.xyz");
 
@@ -143,7 +152,7 @@ test.describe("handing over", () => {
     await expect(phone.getByRole("heading", { name: /shapes?$/ }).first()).toBeVisible();
     await expect(phone.getByRole("heading", { name: "How sure" })).toBeVisible();
     await expect(phone.getByRole("link", { name: /Populations and properties/ })).toBeVisible();
-    expect(await phone.evaluate(() => document.documentElement.scrollWidth)).toBeLessThanOrEqual(390);
+    await expectNoSideways(phone, "the guest's page");
     await expectAccessible(phone);
     const download = phone.waitForEvent("download");
     await phone.getByRole("link", { name: /Bundle with checksums/ }).click();

@@ -1,7 +1,16 @@
 import { randomUUID } from "node:crypto";
 import { readFileSync } from "node:fs";
 import type { Browser, Page } from "@playwright/test";
-import { expect, expectAccessible, expectNoSideways, hydrated, openDemo, signUp, test } from "./base";
+import {
+  expect,
+  expectAccessible,
+  expectNoSideways,
+  hydrated,
+  openDemo,
+  signUp,
+  signUpByForm,
+  test,
+} from "./base";
 
 /** What holds for every page: history, paper, no script, narrow screens, focus, and held frames of something else. */
 
@@ -242,7 +251,7 @@ test.describe("keys and readers", () => {
   });
 
   test("the focus goes to the new page after sign-up and after an upload", async ({ page }) => {
-    await ownTeam(page);
+    await signUpByForm(page, "Nadia Orth", `${randomUUID()}@lab.example`);
     await expect.poll(() => focused(page)).toBe("content");
     await addFiles(page).setInputFiles(
       ownFile(difluoroethane, (old, k) => `${randomUUID()} ${k} energy=${old}`),

@@ -49,8 +49,8 @@ export function AppShell({
   );
 }
 
-/** The first page of a visit, or one that was loaded again, begins at the top, as everywhere. */
-let isFirstPage = true;
+/** The page that the browser itself loaded begins at the top, as everywhere; null once it was left. */
+let loaded: string | null = typeof window === "undefined" ? null : window.location.pathname;
 
 /**
  * On another page of ours what had the focus is gone with the last one: the content takes it, so that keys and readers
@@ -61,8 +61,8 @@ function useFocusAfterMove(main: RefObject<HTMLElement | null>) {
   // biome-ignore lint/correctness/useExhaustiveDependencies: the page is another one when its address is
   useEffect(() => {
     const lost = document.activeElement === null || document.activeElement === document.body;
-    if (!isFirstPage && lost) main.current?.focus({ preventScroll: true });
-    isFirstPage = false;
+    if (pathname !== loaded) loaded = null;
+    if (loaded === null && lost) main.current?.focus({ preventScroll: true });
   }, [pathname, main]);
 }
 
