@@ -58,7 +58,6 @@ let loaded: string | null = typeof window === "undefined" ? null : window.locati
  */
 function useFocusAfterMove(main: RefObject<HTMLElement | null>) {
   const { pathname } = useLocation();
-  // biome-ignore lint/correctness/useExhaustiveDependencies: the page is another one when its address is
   useEffect(() => {
     const lost = document.activeElement === null || document.activeElement === document.body;
     if (pathname !== loaded) loaded = null;
