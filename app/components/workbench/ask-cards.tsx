@@ -136,6 +136,7 @@ function buttonWords(question: IntakeQuestion, chosen: Option | undefined): stri
   if (question.code === "level") return "Name the level";
   if (!chosen) return "Confirm the choice";
   if (question.id === "group") return `${chosen.proposed ? "Keep" : "Take"} ${chosen.text}`;
+  if (chosen.id === "comma") return "Read the comma as a decimal point";
   if (readAskId(question.id)) return chosen.id === "hold" ? "Keep them held" : chosen.text;
   if (chosen.id === "none") return "Take the structures without energies";
   return question.code === "energy-unit" ? `Confirm ${chosen.text}` : `Use ${chosen.text}`;
