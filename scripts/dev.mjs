@@ -25,7 +25,6 @@ const BROWSER_PACKAGES = [
 const SERVER_PACKAGES = [
   "argon2",
   "busboy",
-  "csv-stringify",
   "drizzle-orm",
   "mysql2",
   "nodemailer",

@@ -190,7 +190,7 @@ describe("what lies in the repository", () => {
       const at = parts.findIndex((part, k) => part !== least[k]);
       return at === -1 || (parts[at] ?? 0) > (least[at] ?? 0);
     };
-    for (const name of ["react-router", "@react-router/node", "@react-router/serve", "@react-router/dev"]) {
+    for (const name of ["react-router", "@react-router/node", "@react-router/dev"]) {
       const version = lock.packages[`node_modules/${name}`]?.version ?? "0.0.0";
       expect(atLeast(version, [7, 18, 3]), `${name} ${version}`).toBe(true);
     }
