@@ -1,6 +1,6 @@
 import fc from "fast-check";
 import { expect, it } from "vitest";
-import { packColumn, unpackColumn, unpackPresence } from "./column-data.ts";
+import { packColumn, packedFrames, unpackColumn, unpackPresence } from "./column-data.ts";
 
 it("gives back every double bit for bit, and what is absent as absent", () => {
   const cell = fc.option(fc.double({ noNaN: true, noDefaultInfinity: true }), { nil: null });
@@ -17,6 +17,12 @@ it("gives back every double bit for bit, and what is absent as absent", () => {
     }),
     { seed: 20261201 },
   );
+});
+
+it("says of every length how many frames it speaks of", () => {
+  for (let n = 0; n <= 1_000; n++) {
+    expect(packedFrames(packColumn({ values: new Float64Array(n), present: new Uint8Array(n) }))).toBe(n);
+  }
 });
 
 it("refuses what is no number, and bytes of another length", () => {

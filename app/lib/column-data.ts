@@ -44,6 +44,16 @@ export function unpackColumn(packed: Uint8Array, frames: number): ColumnData {
   return { values, present: unpackPresence(packed.subarray(8 * frames), frames) };
 }
 
+/**
+ * How many frames a packed column speaks of. A reader without a lock takes it from here: a batch may have come between
+ * its looks at the ensemble and at the column.
+ *
+ * @example packedFrames(packColumn({ values: new Float64Array(12), present: new Uint8Array(12) })) // 12
+ */
+export function packedFrames(packed: Uint8Array): number {
+  return Math.floor((packed.length * 8) / 65);
+}
+
 /** Presence marks from the tail of a packed column alone. */
 export function unpackPresence(bits: Uint8Array, frames: number): Uint8Array {
   const present = new Uint8Array(frames);

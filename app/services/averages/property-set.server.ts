@@ -5,7 +5,7 @@ import { type AtomColumn, mergeEquivalentAtoms } from "../../lib/averages/atom-g
 import { ParityGroup } from "../../lib/averages/parity-group.ts";
 import type { PropertyValues } from "../../lib/averages/property-set.ts";
 import { ruleOf } from "../../lib/averages/rule.ts";
-import { unpackColumn } from "../../lib/column-data.ts";
+import { packedFrames, unpackColumn } from "../../lib/column-data.ts";
 import type { KeptConformer } from "../../lib/recipe/result.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
 import { unpackMolecule } from "../ensembles/molecule.server.ts";
@@ -85,7 +85,7 @@ export async function propertyValues(
       const data = packed.get(column.id);
       // Removed between the two reads: it is not there any more.
       if (data === undefined) continue;
-      const { values, present } = unpackColumn(data, ensemble.frames);
+      const { values, present } = unpackColumn(data, packedFrames(data));
       properties.push({
         ...described(column),
         values: kept.map(({ frame }) => (present[frame - 1] === 1 ? (values[frame - 1] ?? null) : null)),

@@ -1,7 +1,7 @@
 import { and, asc, eq } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, type ensembles } from "../../db/schema.server.ts";
-import { unpackColumn } from "../../lib/column-data.ts";
+import { packedFrames, unpackColumn } from "../../lib/column-data.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { asEnergyUnit, batchAnswers, type OwnLevel, relativeZeros } from "../../lib/intake/batch-energies.ts";
 import { decideEnergies, type EnergyAnswers, NO_ENERGY } from "../../lib/intake/decide-energies.ts";
@@ -33,7 +33,7 @@ export async function ownLevel(ensemble: EnsembleRow, named: string | null): Pro
       : rows.find(({ name, id }) => name === named || id === named);
   const unit = asEnergyUnit(row?.unit ?? null);
   if (row === undefined || unit === null) return null;
-  const { values, present } = unpackColumn(row.data, ensemble.frames);
+  const { values, present } = unpackColumn(row.data, packedFrames(row.data));
   const there = [...values].filter((_, k) => present[k] === 1);
   return {
     name: row.name,

@@ -2,7 +2,7 @@ import { and, eq, inArray, sql } from "drizzle-orm";
 import type { Queryable, Transaction } from "../../db/client.server.ts";
 import { columns, ensembleFiles, type ensembles, frames, intakeMessages } from "../../db/schema.server.ts";
 import type { Warnings } from "../../lib/api/schemas.ts";
-import { unpackColumn } from "../../lib/column-data.ts";
+import { packedFrames, unpackColumn } from "../../lib/column-data.ts";
 import { asEnergyUnit } from "../../lib/intake/batch-energies.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
 import type { IntakeMessage } from "../../lib/intake/report.ts";
@@ -25,7 +25,7 @@ type LevelRow = Pick<typeof columns.$inferSelect, "name" | "unit" | "data">;
 function energiesOf({ name, unit, data }: LevelRow, used: string): LevelEnergies | null {
   const known = asEnergyUnit(unit);
   if (known === null) return null;
-  const { values, present } = unpackColumn(data, used.length);
+  const { values, present } = unpackColumn(data, packedFrames(data));
   const numbers = [...used].flatMap((mark, k) => (mark === "1" && present[k] === 1 ? [k + 1] : []));
   return { name, unit: known, frames: numbers, values: numbers.map((frame) => values[frame - 1] ?? 0) };
 }
