@@ -165,6 +165,15 @@ export async function letterLink(page: Page, email: string, path: string): Promi
 
 /** Fails on what axe finds serious or critical, by rule and element; `without` names rules that do not fit what is open. */
 export async function expectAccessible(page: Page, without: string[] = []): Promise<void> {
+  // Colours on their way from one theme to the other have a contrast that nobody reads.
+  await page.waitForFunction(() =>
+    document
+      .getAnimations()
+      .every(
+        ({ playState, effect }) =>
+          playState !== "running" || effect?.getComputedTiming().iterations === Number.POSITIVE_INFINITY,
+      ),
+  );
   const found = await new AxeBuilder({ page })
     .disableRules(without)
     .withTags(["wcag2a", "wcag2aa", "wcag21aa", "wcag22aa"])
