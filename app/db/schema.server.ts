@@ -12,6 +12,7 @@ import {
   varchar,
 } from "drizzle-orm/mysql-core";
 import { z } from "zod";
+import { averagingSchema } from "../lib/averages/averaging.ts";
 import { siftRecipeSchema } from "../lib/recipe/recipe.ts";
 import {
   bytesColumn,
@@ -495,6 +496,16 @@ export const columns = mysqlTable(
   },
   (t) => [uniqueIndex("columns_name").on(t.ensembleId, t.name), index("columns_source").on(t.sourceId)],
 );
+
+/** What people said of averages: groups of atoms taken apart by hand, measured values. A row an ensemble. */
+export const averaging = mysqlTable("averaging", {
+  ensembleId: idColumn()
+    .primaryKey()
+    .references(() => ensembles.id, { onDelete: "cascade" }),
+  data: jsonColumn(averagingSchema)().notNull(),
+  version: int().notNull().default(1),
+  changedAt: timeColumn().notNull(),
+});
 
 /** Columns that somebody removed: brought back within 30 days, then purged. */
 export const removedColumns = mysqlTable(
