@@ -651,8 +651,11 @@ export const plans = mysqlTable(
     createdBy: idColumn(),
     createdAt: timeColumn().notNull(),
     changedAt: timeColumn().notNull(),
+    /** Removed, and brought back within 30 days. */
+    deletedAt: timeColumn(),
   },
-  (t) => [uniqueIndex("plans_name").on(t.ensembleId, t.name)],
+  // Not unique: a removed plan leaves its name to another. Names are looked at under the lock of the ensemble.
+  (t) => [index("plans_ensemble").on(t.ensembleId, t.name)],
 );
 
 // --- hand-over --------------------------------------------------------------------------------
