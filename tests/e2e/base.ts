@@ -115,7 +115,8 @@ export async function signUpByForm(page: Page, name: string, email: string): Pro
   await page.waitForURL(/\/login\?signed-up$/);
   // What was typed a moment ago need not be typed again.
   await expect(page.getByLabel("Address")).toHaveValue(email);
-  await page.getByLabel("Password").fill(NEW_PASSWORD);
+  await expect(page.getByLabel("Password")).toBeFocused();
+  await page.keyboard.type(NEW_PASSWORD);
   await page.getByRole("button", { name: "Sign in" }).click();
   await page.waitForURL(/\/teams\/[a-z2-7]{16}$/);
 }

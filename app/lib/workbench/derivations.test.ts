@@ -1,5 +1,6 @@
 import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
+import type { IntakeMessage } from "../intake/report.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { KeptConformer, SiftResult } from "../recipe/result.ts";
 import { distinctPopulations } from "../thermo/populations.ts";
@@ -300,7 +301,7 @@ describe("findings in words", () => {
 
   test("intake", () => {
     const weighed = { ...ensemble, levels: [level] };
-    const quiet = { waiting: 0, questions: [], messages: [] };
+    const quiet = { waiting: 0, questions: [], messages: [], strip: "" };
     expect(intakeFinding(weighed, quiet).text).toBe(
       "400 frames read: 397 are accepted, 5 of them with a remark, and 3 are held.",
     );
@@ -317,7 +318,7 @@ describe("findings in words", () => {
   });
 
   test("intake says first what is odd of the energies, or that there are none", () => {
-    const quiet = { waiting: 0, questions: [], messages: [] };
+    const quiet = { waiting: 0, questions: [], messages: [], strip: "" };
     const whole = { ...ensemble, levels: [level], accepted: 400, remarked: 0, held: 0 };
     const none = intakeFinding({ ...whole, levels: [] }, quiet);
     expect(none.text).toBe(
@@ -329,12 +330,32 @@ describe("findings in words", () => {
       message: "The energies span 395 kcal/mol, more than conformers of one molecule do.",
       hint: "Is the unit right, and are all frames the same molecule?",
     };
-    expect(intakeFinding(whole, { ...quiet, messages: [{ ...wide, frame: 3 }] }).text).toBe(
-      "400 frames read: all are accepted.",
+    const all = "400 frames read: all are accepted.";
+    const say = (messages: IntakeMessage[], strip = "aaaaa") =>
+      intakeFinding(whole, { ...quiet, messages, strip }).text;
+    expect(say([wide])).toBe(`${all} ${wide.message} ${wide.hint}`);
+    // A batch that lies apart, and single frames that do, of the first upload and of later ones alike.
+    const batch = {
+      ...wide,
+      file: "b.xyz",
+      message: "The energies of this batch (frames 4 to 5) lie apart.",
+    };
+    expect(say([wide, batch])).toBe(`${all} ${wide.message} ${wide.hint} ${batch.message} ${wide.hint}`);
+    const lone = {
+      ...wide,
+      frame: 3,
+      message: "The energy lies 501 kcal/mol from the middle of the others.",
+    };
+    expect(say([lone])).toBe(
+      `${all} In frame 3 the energy lies 501 kcal/mol from the middle of the others. ${wide.hint}`,
     );
-    expect(intakeFinding(whole, { ...quiet, messages: [wide] }).text).toBe(
-      `400 frames read: all are accepted. ${wide.message} ${wide.hint}`,
+    expect(say([lone], "aahaa")).toBe(all);
+    const several = [lone, { ...lone, frame: 4 }, { ...lone, frame: 1 }];
+    expect(say(several)).toMatch(
+      / The energies of frames 1, 3, 4 lie more than 100 kcal\/mol from those of the rest\. /,
     );
+    const { hint: _none, ...rest } = { ...wide, message: "40 more of this kind, not listed." };
+    expect(say([...several, rest])).toContain("The energies of frames 1, 3, 4 and of others lie");
     const apart = (kcal: number) =>
       rows.map((row, k) => ({ ...row, relativeEnergy: (k * kcal) / (rows.length - 1) }));
     expect(spreadCaution(apart(395), level)).toMatch(

@@ -12,14 +12,16 @@ import {
   pluralWord,
   withUnit,
 } from "../format.ts";
+import { WIDE_KCAL } from "../intake/energy-remarks.ts";
 import { readAskId } from "../intake/reading-questions.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
 import { spreadWarning } from "../intake/whole-spread.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { thermalEnergyKcal } from "../units.ts";
-import type { EnsembleView, LevelView } from "../views.ts";
+import type { EnsembleView, IntakeView, LevelView } from "../views.ts";
 import { byPopulation, type ConformerRow, type FrameRole, type Outside } from "./conformers.ts";
+import { framesWords } from "./intake-lists.ts";
 
 /** What a section says first: the finding, and a second line that backs it. Plain text, computed. */
 export interface Finding {
@@ -203,10 +205,39 @@ export function moreMayFollow(questions: readonly IntakeQuestion[]): boolean {
   return open.some(({ id, code }) => readAskId(id) !== null || (code === "energy-from" && !unitAsked));
 }
 
-/** Energies that span more, or less, than those of conformers do, as intake says it of the files; null where they do not. */
-export function spreadRemark(messages: readonly IntakeMessage[]): string | null {
-  const found = messages.find(({ code, frame }) => code === "E12" && frame === undefined);
-  return found ? [found.message, found.hint].filter(Boolean).join(" ") : null;
+/**
+ * Energies that span more, or less, than those of conformers do, or lie far off the others, as intake says it of the
+ * files, of further batches and of single frames; null where they do not, or where the frames that do are held.
+ *
+ * @param strip state of every frame, as `IntakeView` has it
+ */
+export function spreadRemark(messages: readonly IntakeMessage[], strip: string): string | null {
+  const said = messages.filter(({ code }) => code === "E12");
+  // The line that counts what is not listed has no hint.
+  const whole = said.filter(({ frame, hint }) => frame === undefined && hint !== undefined);
+  const unlisted = said.some(({ frame, hint }) => frame === undefined && hint === undefined);
+  const single = said.filter(({ frame }) => frame !== undefined && strip[frame - 1] !== "h");
+  const words = [
+    ...new Set(whole.map(({ message, hint }) => `${message} ${hint}`)),
+    farOffFrames(single, unlisted),
+  ].filter((sentence) => sentence !== null);
+  return words.length === 0 ? null : words.join(" ");
+}
+
+/** Frames whose energy lies far off, in a sentence; `unlisted` where there are more of them. */
+function farOffFrames(found: readonly IntakeMessage[], unlisted: boolean): string | null {
+  const [first, second] = found;
+  if (first?.frame === undefined) return null;
+  if (second === undefined && !unlisted) {
+    const message = first.message.charAt(0).toLowerCase() + first.message.slice(1);
+    return [`In frame ${formatCount(first.frame)} ${message}`, first.hint].filter(Boolean).join(" ");
+  }
+  const numbers = found.flatMap(({ frame }) => (frame === undefined ? [] : [frame]));
+  const frames = framesWords([...new Set(numbers)]).toLowerCase();
+  return (
+    `The energies of ${frames}${unlisted ? " and of others" : ""} lie more than ${WIDE_KCAL} kcal/mol from those of the rest. ` +
+    "Another unit or zero of energy, or calculations that failed? Hold the frames if so."
+  );
 }
 
 /** The same of the conformers of a set, whose populations rest on these energies; null where nothing is odd. */
@@ -224,7 +255,7 @@ export function spreadCaution(rows: readonly ConformerRow[], level: LevelView | 
  */
 export function intakeFinding(
   ensemble: EnsembleView,
-  intake: { waiting: number; questions: readonly IntakeQuestion[]; messages: readonly IntakeMessage[] },
+  intake: Pick<IntakeView, "waiting" | "questions" | "messages" | "strip">,
 ): Finding {
   const { frames, accepted, remarked, held, openQuestions } = ensemble;
   const { waiting } = intake;
@@ -253,7 +284,7 @@ export function intakeFinding(
       second: null,
     };
   }
-  const { also, todo } = energiesFinding(ensemble, intake.messages);
+  const { also, todo } = energiesFinding(ensemble, intake);
   if (held === 0) {
     const remark = remarked === 0 ? "" : `, ${formatCount(remarked)} of them with a remark`;
     return {
@@ -272,7 +303,7 @@ export function intakeFinding(
 /** What is to be known of the energies before anything else, and what to do about it. */
 function energiesFinding(
   ensemble: EnsembleView,
-  messages: readonly IntakeMessage[],
+  { messages, strip }: Pick<IntakeView, "messages" | "strip">,
 ): { also: string; todo: string | null } {
   if (ensemble.accepted > 0 && ensemble.levels.every(({ count }) => count === 0)) {
     return {
@@ -280,7 +311,7 @@ function energiesFinding(
       todo: "Give the energies as a table or a second structure file, or read the files again and name the number that is the energy.",
     };
   }
-  const odd = spreadRemark(messages);
+  const odd = spreadRemark(messages, strip);
   return odd === null ? { also: "", todo: null } : { also: ` ${odd}`, todo: null };
 }
 

@@ -1,3 +1,4 @@
+import { useId } from "react";
 import { Form, href, redirect } from "react-router";
 import { Door, DoorAside } from "~/components/layout/door";
 import { SubmitButton } from "~/components/ui/button";
@@ -53,6 +54,8 @@ export async function action({ request, context, url }: Route.ActionArgs) {
 }
 
 export default function Page({ loaderData, actionData }: Route.ComponentProps) {
+  const welcome = useId();
+  const signedUp = loaderData.signedUp && !actionData;
   return (
     <Door title="Sign in" foot="After ten wrong tries an address rests for 15 minutes.">
       {loaderData.changed ? (
@@ -60,10 +63,12 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
           The password was changed and every open session ended. Sign in with the new one.
         </Note>
       ) : null}
-      {loaderData.signedUp && !actionData ? (
+      {signedUp ? (
         <Note tone="good">
-          Your account is open: sign in with the address and password that you chose. If the address had an
-          account before, nothing was changed, and a letter is on its way to it.
+          <p id={welcome}>
+            Your account is open: sign in with the address and password that you chose. If the address had an
+            account before, nothing was changed, and a letter is on its way to it.
+          </p>
         </Note>
       ) : null}
       {actionData ? (
@@ -87,6 +92,9 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
           type="password"
           autoComplete="current-password"
           required
+          // The address is there already, from the form before; what stands above describes the field.
+          autoFocus={signedUp && loaderData.typed !== undefined}
+          aria-describedby={signedUp ? welcome : undefined}
         />
         <Checkbox name="stay" value="1">
           Stay signed in on this computer for 30 days
