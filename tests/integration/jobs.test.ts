@@ -57,6 +57,26 @@ describe("the queue", () => {
     expect(order).toEqual([first, stranger, colleague, second, undefined]);
   });
 
+  it("goes round between teams and people where one job runs at a time", async () => {
+    const [busy, idle] = [await makeTeam(), await makeTeam()];
+    const at = (second: number) => new Date(2026, 0, 1, 0, 0, second);
+    const [one, two] = [newId(), newId()];
+    const five: string[] = [];
+    for (let k = 1; k <= 5; k++) five.push(await makeJob({ teamId: busy.id, userId: one, createdAt: at(k) }));
+    const order: (string | undefined)[] = [];
+    const serve = async () => {
+      const job = await claimJob("me");
+      order.push(job?.id);
+      if (job) await inTransaction((tx) => finishJob(tx, job.id, "me"));
+    };
+    await serve();
+    const colleague = await makeJob({ teamId: busy.id, userId: two, createdAt: at(6) });
+    const stranger = await makeJob({ teamId: idle.id, userId: newId(), createdAt: at(7) });
+    for (let k = 0; k < 7; k++) await serve();
+    const [first, ...others] = five;
+    expect(order).toEqual([first, stranger, colleague, ...others, undefined]);
+  });
+
   it("takes a dead process's job back once its lease is over, and gives up after three tries (F08)", async () => {
     const { id: teamId } = await makeTeam();
     const dead = { teamId, state: "running" as const, holder: "gone" };
@@ -192,6 +212,33 @@ describe("a sift that runs", () => {
     await db.update(jobs).set({ leaseUntil: LONG_AGO }).where(eq(jobs.id, jobId));
     await startJobs();
     expect((await (await call(`/api/v1/sifts/${id}?wait=60`, { token })).json()).status).toBe("done");
+  }, 90_000);
+
+  it("of one person's five does not stand before the one of another", async () => {
+    const stranger = await makeLab("Another lab");
+    const long = await takenIn(token, [{ name: "long.xyz", content: noisy(1_200) }]);
+    const short = await takenIn(stranger.token, [{ name: "short.xyz", content: noisy(10) }]);
+    await db.delete(sifts);
+    await db.delete(jobs);
+    const ask = async (by: string, id: string, rmsdTolerance: number) => {
+      const recipe = { level: null, rmsdTolerance, atoms: "all" };
+      return (await (await post(by, `/ensembles/${id}/sifts`, recipe)).json()).id as string;
+    };
+    const five: string[] = [];
+    for (let k = 0; k < 5; k++) five.push(await ask(token, long.id, 0.04 + 0.001 * k));
+    const one = await ask(stranger.token, short.id, 0.1);
+    await startJobs();
+    const done = await (await call(`/api/v1/sifts/${one}?wait=60`, { token: stranger.token })).json();
+    expect(done.status).toBe("done");
+    for (const id of five) await call(`/api/v1/sifts/${id}?wait=60`, { token });
+    const ended = await db
+      .select({ siftId: sifts.id })
+      .from(sifts)
+      .innerJoin(jobs, eq(jobs.id, sifts.jobId))
+      .where(eq(jobs.state, "done"))
+      .orderBy(jobs.finishedAt);
+    expect(ended).toHaveLength(6);
+    expect(ended.findIndex(({ siftId }) => siftId === one)).toBeLessThan(5);
   }, 90_000);
 
   it("never begins when it was cancelled in the queue, or when the frames changed meanwhile", async () => {

@@ -24,6 +24,8 @@ export interface JobState {
   claiming: boolean;
   claimAgain: boolean;
   stopping: boolean;
+  /** When those who wait were last served here, by team and by person; counted, not timed. */
+  readonly turns: Map<string, number>;
 }
 
 const kept = globalThis as typeof globalThis & { lowlyingJobs?: JobState };
@@ -38,6 +40,7 @@ function newState(): JobState {
     claiming: false,
     claimAgain: false,
     stopping: false,
+    turns: new Map(),
   };
 }
 
