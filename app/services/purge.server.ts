@@ -7,6 +7,7 @@ import {
   ensembles,
   links,
   outsideStructures,
+  plans,
   removedColumns,
   sources,
   teams,
@@ -59,7 +60,7 @@ async function removeOrphanedEditions(): Promise<void> {
 }
 
 /**
- * Removes for good what was deleted more than 30 days ago: ensembles with their bytes, structures from outside, teams
+ * Removes for good what was deleted more than 30 days ago: ensembles with their bytes, structures from outside, plans, teams
  * with all they hold, accounts. Safe to run twice and to be cut short. Editions of a living team stay, whatever became of their ensemble.
  */
 export async function purgeDeleted(now = new Date()): Promise<void> {
@@ -67,6 +68,7 @@ export async function purgeDeleted(now = new Date()): Promise<void> {
   await removeEnsembles(and(lt(ensembles.deletedAt, before), isNull(ensembles.readingSince)));
   await db.delete(removedColumns).where(lt(removedColumns.removedAt, before));
   await db.delete(outsideStructures).where(lt(outsideStructures.deletedAt, before));
+  await db.delete(plans).where(lt(plans.deletedAt, before));
   await removeUnusedSources(before);
   const ended = await db.select({ id: teams.id }).from(teams).where(lt(teams.deletedAt, before));
   for (const { id } of ended) await removeTeam(id);

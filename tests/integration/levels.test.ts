@@ -11,8 +11,9 @@ import { lockEnsemble, storeColumn } from "~/services/columns/store-column.serve
 import { loadLevelEnergies } from "~/services/levels/load-level-energies.server";
 import { loadSeriesLevels } from "~/services/levels/load-series-levels.server";
 import { loadLogbook } from "~/services/logbook/load-logbook.server";
-import { listPlans } from "~/services/plans/list-plans.server";
-import { removePlans, savePlans } from "~/services/plans/save-plans.server";
+import { listPlans, listRemovedPlans } from "~/services/plans/list-plans.server";
+import { removePlans } from "~/services/plans/remove-plans.server";
+import { savePlans } from "~/services/plans/save-plans.server";
 import { makeMember } from "../factories/people";
 import { makeLab, post, reference, sifted, takenIn, withJobs } from "../factories/upload";
 import { call } from "../setup/app";
@@ -215,6 +216,26 @@ describe("plans", () => {
     await expect(removePlans({ actor, ensembleId, id: newId() })).rejects.toMatchObject({
       code: "not-found",
     });
+  });
+
+  it("come back when they were removed, unless their name went to another", async () => {
+    const [spring] = await listPlans({ actor, ensembleId });
+    const at = { actor, ensembleId, id: spring!.id };
+    await removePlans(at);
+    expect(await listPlans({ actor, ensembleId })).toEqual([]);
+    expect(await listRemovedPlans({ actor, ensembleId })).toMatchObject([{ id: spring!.id, name: "Spring" }]);
+    await expect(removePlans(at)).rejects.toMatchObject({ code: "not-found" });
+    const change = { actor, ensembleId, name: "Spring", plans: set() };
+    await expect(savePlans({ ...change, id: spring!.id, version: 2 })).rejects.toMatchObject({
+      code: "not-found",
+    });
+    const second = await savePlans(change);
+    await expect(removePlans({ ...at, undo: true })).rejects.toMatchObject({ code: "conflict" });
+    await removePlans({ ...at, id: second.id });
+    await removePlans({ ...at, undo: true });
+    expect(await listPlans({ actor, ensembleId })).toEqual([spring]);
+    const { rows } = await loadLogbook({ actor, ensembleId });
+    expect(rows[0]?.text).toBe("Brought the plan Spring back");
   });
 
   it("leave out what nobody can read any more, and go when they are removed", async () => {

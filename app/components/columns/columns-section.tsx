@@ -1,13 +1,14 @@
+import { href } from "react-router";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
 import { TextLink } from "~/components/ui/text-link";
+import { RemovedList } from "~/components/workbench/removed-list";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { type ColumnsView, looksLikeLevel } from "~/lib/columns-view";
 import { plural } from "~/lib/format";
 import { AddColumns } from "./add-columns";
 import { ColumnTable } from "./column-table";
 import { DeriveForm } from "./derive-form";
-import { RemovedColumns } from "./removed-columns";
 
 /** Every quantity over the frames: levels and properties, where they come from, and the way to more. */
 export function ColumnsSection({ view }: { view: ColumnsView }) {
@@ -47,7 +48,11 @@ export function ColumnsSection({ view }: { view: ColumnsView }) {
         <>
           <AddColumns ensembleId={ensemble.id} />
           {columns.length > 0 ? <DeriveForm ensembleId={ensemble.id} columns={columns} /> : null}
-          <RemovedColumns ensembleId={ensemble.id} removed={removed} />
+          <RemovedList
+            removed={removed}
+            action={href("/ensembles/:id/columns", { id: ensemble.id })}
+            field="column"
+          />
           <p className="mt-6 hidden text-ink-3 noscript:block">
             Adding a file needs script here; the API takes the same files without.
           </p>

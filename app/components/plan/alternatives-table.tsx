@@ -1,14 +1,27 @@
 import { Download, Plus, X } from "lucide-react";
+import { useRef } from "react";
 import { saveText } from "~/components/charts/export-figure";
 import { Button, IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
+import { showToast } from "~/components/ui/toast";
 import { ABSENT, capital, countWord, formatCount, formatEnergy, formatPopulation } from "~/lib/format";
 import { alternativesCsv, marginalOf } from "~/lib/plan/alternatives-csv";
 import { MAX_ALTERNATIVES, type PlanSet } from "~/lib/plan/plan";
 import type { PlansReport } from "~/lib/plan/report";
 import { costFigure, formatHours } from "~/lib/plan/words";
+
+/** A plan that was left out at its old place, whatever was changed meanwhile; not where four others stand. */
+function withPlanAt(set: PlanSet, at: number, plan: PlanSet["plans"][number]): PlanSet {
+  if (set.plans.length >= MAX_ALTERNATIVES) return set;
+  const place = Math.min(at, set.plans.length);
+  return {
+    ...set,
+    plans: set.plans.toSpliced(place, 0, plan),
+    chosen: set.chosen >= place ? set.chosen + 1 : set.chosen,
+  };
+}
 
 /** Plans side by side, at most four; the one at hand is washed in magenta. */
 export function AlternativesTable({
@@ -70,9 +83,20 @@ export function AlternativesTable({
     const name = ["Second", "Third", "Fourth", "Other"].find((one) => plans.every((p) => p.name !== one));
     onChange({ ...set, plans: [...plans, { name: name ?? "Other", plan: own.plan }], chosen: plans.length });
   };
+  // The toast may act on plans that were changed after it was shown.
+  const latest = useRef({ set, onChange });
+  latest.current = { set, onChange };
   const remove = (at: number) => {
     const left = plans.filter((_, k) => k !== at);
     onChange({ ...set, plans: left, chosen: Math.min(chosen > at ? chosen - 1 : chosen, left.length - 1) });
+    const gone = plans[at];
+    if (!gone) return;
+    showToast({
+      tone: "done",
+      badge: "left out",
+      text: `The plan ${gone.name}.`,
+      action: { label: "Undo", act: () => latest.current.onChange(withPlanAt(latest.current.set, at, gone)) },
+    });
   };
   return (
     <section className="mt-9" aria-labelledby="plan-alternatives">

@@ -9,6 +9,8 @@ import { Note } from "~/components/ui/note";
 import { Skeleton } from "~/components/ui/skeleton";
 import { StatePanel } from "~/components/ui/state-panel";
 import { TextButton, TextLink } from "~/components/ui/text-link";
+import { showToast } from "~/components/ui/toast";
+import { RemovedList } from "~/components/workbench/removed-list";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
@@ -16,7 +18,7 @@ import type { LevelEnergiesView, Member } from "~/lib/levels/level-energies";
 import type { Plan, PlanSet } from "~/lib/plan/plan";
 import { firstPlans } from "~/lib/plan/start";
 import { planAssumptions, planFinding, planText } from "~/lib/plan/words";
-import type { SavedPlans } from "~/services/plans/list-plans.server";
+import type { RemovedPlan, SavedPlans } from "~/services/plans/list-plans.server";
 import { AlternativesTable } from "./alternatives-table";
 import { CostChart } from "./cost-chart";
 import { FirstWindowChart } from "./first-window-chart";
@@ -30,9 +32,11 @@ import { type PlanFigures, usePlanReport } from "./use-plan-report";
 export function PlanSection({
   energies,
   saved,
+  removed,
 }: {
   energies: readonly LevelEnergiesView[];
   saved: readonly SavedPlans[];
+  removed: readonly RemovedPlan[];
 }) {
   const levels = useLevelData(energies);
   const { state } = useWorkbench();
@@ -50,7 +54,7 @@ export function PlanSection({
           </p>
         </StatePanel>
       ) : (
-        <Planned {...{ levels, members, saved }} first={reference ? [level, reference] : [level]} />
+        <Planned {...{ levels, members, saved, removed }} first={reference ? [level, reference] : [level]} />
       )}
     </section>
   );
@@ -61,12 +65,14 @@ function Planned({
   members,
   first,
   saved,
+  removed,
 }: {
   levels: readonly LevelData[];
   members: readonly Member[];
   /** Levels of a fresh draft. */
   first: readonly LevelData[];
   saved: readonly SavedPlans[];
+  removed: readonly RemovedPlan[];
 }) {
   const { ensemble, sift, state } = useWorkbench();
   const fresh = () =>
@@ -76,6 +82,18 @@ function Planned({
   const { set, open } = draft;
   const figures = usePlanReport(set, levels, members, ensemble.atoms);
   const readOnly = !ensemble.mayCompute;
+  /** Shows another one; what was not saved of this one comes back with the toast. */
+  const leaveFor = (one: SavedPlans | null) => {
+    const before = draft;
+    show(shownAs(one));
+    if (!unsaved) return;
+    showToast({
+      tone: "done",
+      badge: "put aside",
+      text: `What was not saved of ${before.open === null ? "the draft" : before.open.name}.`,
+      action: { label: "Undo", act: () => show(before, true) },
+    });
+  };
   const plan = set.plans[set.chosen]?.plan ?? set.plans[0]?.plan;
   if (!plan) return null;
   const startLevel = levels.find((one) => one.id === plan.start);
@@ -98,16 +116,23 @@ function Planned({
         </Finding>
       )}
       <SavePlan
+        ensembleId={ensemble.id}
         set={set}
         open={open}
         saved={saved}
         readOnly={readOnly}
-        onOpen={(one) => show(shownAs(one))}
+        onOpen={leaveFor}
+        onSaved={(one) => show(shownAs(one))}
+        onRemoved={() => {
+          const [before, edited] = [draft, unsaved];
+          show(shownAs(null));
+          return () => show(before, edited);
+        }}
       />
       {unsaved ? (
         <p className="mt-2 text-xs text-ink-3 print:hidden">
           Not saved yet; kept in this tab.{" "}
-          <TextButton onClick={() => show(shownAs(saved.find(({ id }) => id === open?.id) ?? null))}>
+          <TextButton onClick={() => leaveFor(saved.find(({ id }) => id === open?.id) ?? null)}>
             {open === null ? "Start anew" : `Back to ${open.name} as saved`}
           </TextButton>
         </p>
@@ -143,6 +168,9 @@ function Planned({
       {outcome && figures.report ? (
         <Closing plan={plan} start={start} figures={figures} chosen={set.chosen} atoms={ensemble.atoms} />
       ) : null}
+      {readOnly ? null : (
+        <RemovedList removed={removed} action={href("/ensembles/:id/plan", { id: ensemble.id })} field="id" />
+      )}
     </>
   );
 }

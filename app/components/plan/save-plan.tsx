@@ -1,7 +1,7 @@
-import { useEffect, useState } from "react";
-import { useFetcher } from "react-router";
+import { useEffect, useRef, useState } from "react";
+import { href, useFetcher } from "react-router";
 import { Button, SubmitButton } from "~/components/ui/button";
-import { Dialog, DialogFoot } from "~/components/ui/dialog";
+import { Dialog, DialogClose, DialogFoot } from "~/components/ui/dialog";
 import { TextField } from "~/components/ui/field";
 import { SelectField } from "~/components/ui/select-field";
 import { showToast } from "~/components/ui/toast";
@@ -21,19 +21,27 @@ type Answer =
 
 /** Opens a stored plan, saves the one at hand under its name or another, removes it. */
 export function SavePlan({
+  ensembleId,
   set,
   open,
   saved,
   readOnly,
   onOpen,
+  onSaved,
+  onRemoved,
 }: {
+  ensembleId: string;
   set: PlanSet;
   open: OpenPlan | null;
   saved: readonly SavedPlans[];
   readOnly: boolean;
   /** With null a fresh draft. */
   onOpen: (plan: SavedPlans | null) => void;
+  onSaved: (plan: SavedPlans) => void;
+  /** @returns shows again what was at hand, once the plan is back */
+  onRemoved: () => () => void;
 }) {
+  const removal = useRemoval(ensembleId, onRemoved);
   return (
     <div className="mt-4 flex flex-wrap items-end gap-3 noscript:hidden print:hidden">
       {saved.length > 0 ? (
@@ -48,8 +56,8 @@ export function SavePlan({
           ]}
         />
       ) : null}
-      {readOnly ? null : <SaveDialog key={open?.id ?? "new"} set={set} open={open} onOpen={onOpen} />}
-      {readOnly || open === null ? null : <RemoveButton open={open} onOpen={onOpen} />}
+      {readOnly ? null : <SaveDialog key={open?.id ?? "new"} set={set} open={open} onSaved={onSaved} />}
+      {readOnly || open === null ? null : <RemoveDialog key={open.id} open={open} {...removal} />}
     </div>
   );
 }
@@ -57,11 +65,11 @@ export function SavePlan({
 function SaveDialog({
   set,
   open,
-  onOpen,
+  onSaved,
 }: {
   set: PlanSet;
   open: OpenPlan | null;
-  onOpen: (plan: SavedPlans | null) => void;
+  onSaved: (plan: SavedPlans) => void;
 }) {
   const [shown, setShown] = useState(false);
   const [asNew, setAsNew] = useState(open === null);
@@ -73,7 +81,7 @@ function SaveDialog({
   useEffect(() => {
     if (fetcher.state !== "idle" || !answer?.ok || !answer.saved) return;
     setShown(false);
-    onOpen({ ...answer.saved, name: name.trim(), changedAt: new Date().toISOString(), plans: set });
+    onSaved({ ...answer.saved, name: name.trim(), changedAt: new Date().toISOString(), plans: set });
     showToast({
       tone: "done",
       badge: "saved",
@@ -126,33 +134,65 @@ function SaveDialog({
   );
 }
 
-function RemoveButton({ open, onOpen }: { open: OpenPlan; onOpen: (plan: SavedPlans | null) => void }) {
-  const [shown, setShown] = useState(false);
+/** Removes a plan and brings it back: from the toast for a moment, from the list at the foot for thirty days. */
+function useRemoval(ensembleId: string, onRemoved: () => () => void) {
   const fetcher = useFetcher<Answer>();
+  const action = href("/ensembles/:id/plan", { id: ensembleId });
+  const asked = useRef<{ plan: OpenPlan; back: (() => void) | null } | null>(null);
+  const told = useRef<Answer | undefined>(undefined);
+  const { data, state, submit } = fetcher;
+  const send = (intent: "remove" | "restore", plan: OpenPlan, back: (() => void) | null) => {
+    asked.current = { plan, back };
+    void submit({ intent, id: plan.id }, { method: "post", action });
+  };
   // biome-ignore lint/correctness/useExhaustiveDependencies: only a new answer is news
   useEffect(() => {
-    if (fetcher.state !== "idle" || !fetcher.data?.ok) return;
-    setShown(false);
-    showToast({ tone: "done", badge: "removed", text: `The plan ${open.name}.` });
-    onOpen(null);
-  }, [fetcher.data, fetcher.state]);
+    const last = asked.current;
+    if (state !== "idle" || !data || told.current === data || last === null) return;
+    told.current = data;
+    const { plan, back } = last;
+    if (!data.ok) showToast({ tone: "failed", text: data.message });
+    else if (back !== null) {
+      back();
+      showToast({ tone: "done", badge: "back", text: `The plan ${plan.name}.` });
+    } else {
+      const again = onRemoved();
+      showToast({
+        tone: "done",
+        badge: "removed",
+        text: `The plan ${plan.name}.`,
+        action: { label: "Undo", act: () => send("restore", plan, again) },
+      });
+    }
+  }, [data, state]);
+  return { pending: state !== "idle", onRemove: (plan: OpenPlan) => send("remove", plan, null) };
+}
+
+function RemoveDialog({
+  open,
+  pending,
+  onRemove,
+}: {
+  open: OpenPlan;
+  pending: boolean;
+  onRemove: (plan: OpenPlan) => void;
+}) {
   return (
     <Dialog
-      open={shown}
-      onOpenChange={setShown}
-      trigger={<Button kind="stop">Remove</Button>}
+      trigger={<Button kind="stop">Remove plan</Button>}
       title={`Remove the plan ${open.name}?`}
-      description="Nobody in the team will find it again. The conformers and their energies stay."
+      description="Nobody in the team sees it then; for thirty days it can be brought back. The conformers and their energies stay."
     >
-      <fetcher.Form method="post">
-        <input type="hidden" name="intent" value="remove" />
-        <input type="hidden" name="id" value={open.id} />
-        <DialogFoot>
-          <SubmitButton kind="stop" pending={fetcher.state !== "idle"}>
+      <DialogFoot>
+        <DialogClose asChild>
+          <Button kind="stop" disabled={pending} onClick={() => onRemove(open)}>
             Remove the plan
-          </SubmitButton>
-        </DialogFoot>
-      </fetcher.Form>
+          </Button>
+        </DialogClose>
+        <DialogClose asChild>
+          <Button>Keep it</Button>
+        </DialogClose>
+      </DialogFoot>
     </Dialog>
   );
 }

@@ -1,4 +1,5 @@
 import { Download, Plus, X } from "lucide-react";
+import { useRef } from "react";
 import { saveText } from "~/components/charts/export-figure";
 import type { LevelData } from "~/components/levels/use-comparison";
 import { Button, IconButton } from "~/components/ui/button";
@@ -8,6 +9,7 @@ import { LevelMarker } from "~/components/ui/level-marker";
 import { NumberField } from "~/components/ui/number-field";
 import { SelectField } from "~/components/ui/select-field";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { showToast } from "~/components/ui/toast";
 import {
   ABSENT,
   formatCount,
@@ -48,6 +50,24 @@ export function StepsTable({
   const most = Math.max(1e-12, ...(outcome?.steps.map((step) => step.cost) ?? []));
   const setStep = (at: number, part: Partial<PlanStep>) =>
     onChange({ ...plan, steps: plan.steps.map((step, k) => (k === at ? { ...step, ...part } : step)) });
+  // The toast may act on a plan that was changed after it was shown.
+  const latest = useRef({ plan, onChange });
+  latest.current = { plan, onChange };
+  const remove = (at: number) => {
+    const gone = plan.steps[at];
+    onChange({ ...plan, steps: plan.steps.filter((_, k) => k !== at) });
+    if (!gone) return;
+    const back = () => {
+      const { plan: now, onChange: change } = latest.current;
+      if (now.steps.length < MAX_STEPS) change({ ...now, steps: now.steps.toSpliced(at, 0, gone) });
+    };
+    showToast({
+      tone: "done",
+      badge: "removed",
+      text: `The step to ${gone.name}.`,
+      action: { label: "Undo", act: back },
+    });
+  };
   return (
     <section className="mt-9" aria-labelledby="plan-steps">
       <BlockHead id="plan-steps" title="Steps">
@@ -126,11 +146,7 @@ export function StepsTable({
               {...{ step, levels, atoms, readOnly, most }}
               outcome={outcome?.steps[s] ?? null}
               onChange={(part) => setStep(s, part)}
-              onRemove={
-                plan.steps.length > 1
-                  ? () => onChange({ ...plan, steps: plan.steps.filter((_, k) => k !== s) })
-                  : undefined
-              }
+              onRemove={plan.steps.length > 1 ? () => remove(s) : undefined}
             />
           ))}
           <tr className="border-b border-rule-2">

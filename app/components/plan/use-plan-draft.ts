@@ -28,8 +28,8 @@ export function usePlanDraft(
   /** True while it differs from what is stored. */
   unsaved: boolean;
   edit(set: PlanSet): void;
-  /** Shows a stored plan or a fresh one; what was not saved is gone. */
-  show(next: PlanDraft): void;
+  /** Shows a stored plan, a fresh one, or one that was put aside unsaved; what is not saved now is gone. */
+  show(next: PlanDraft, unsaved?: boolean): void;
 } {
   const key = `plan ${ensembleId}`;
   const [draft, setDraft] = useState(start);
@@ -51,9 +51,9 @@ export function usePlanDraft(
     [key, open],
   );
   const show = useCallback(
-    (next: PlanDraft) => {
-      keepDraft(key, null);
-      setUnsaved(false);
+    (next: PlanDraft, unsaved = false) => {
+      keepDraft(key, unsaved ? next : null);
+      setUnsaved(unsaved);
       setDraft(next);
     },
     [key],

@@ -160,12 +160,36 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
       ),
     }),
   }),
+  z.object({
+    type: z.literal("atoms-split"),
+    /** Names of the atoms, a list a part. */
+    data: z.object({ parts: z.array(z.array(z.string())) }),
+  }),
+  z.object({
+    type: z.literal("atoms-joined"),
+    data: z.object({ parts: z.array(z.array(z.string())) }),
+  }),
+  z.object({
+    type: z.literal("measured-kept"),
+    data: z.object({
+      quantity: z.string(),
+      unit: z.string().nullable(),
+      /** Values that are kept now. */
+      count: z.number(),
+      changes: z.array(
+        z.object({ what: z.string(), before: z.string().nullable(), after: z.string().nullable() }),
+      ),
+      /** Changes beyond those listed. */
+      more: z.number(),
+    }),
+  }),
   z.object({ type: z.literal("column-removed"), data: z.object({ id: z.string(), name: z.string() }) }),
   z.object({
     type: z.literal("plan-saved"),
     data: z.object({ id: z.string(), name: z.string(), version: z.number() }),
   }),
   z.object({ type: z.literal("plan-removed"), data: z.object({ id: z.string(), name: z.string() }) }),
+  z.object({ type: z.literal("plan-restored"), data: z.object({ id: z.string(), name: z.string() }) }),
   z.object({ type: z.literal("column-restored"), data: z.object({ id: z.string(), name: z.string() }) }),
   z.object({
     type: z.literal("edition-frozen"),
@@ -229,6 +253,18 @@ function countWords(d: { frames: number; accepted: number; remarked: number; hel
   const remarked = d.remarked > 0 ? `, ${formatCount(d.remarked)} of them with a remark` : "";
   return `${plural(d.frames, "frame")}: ${formatCount(d.accepted)} accepted${remarked}, ${formatCount(d.held)} held`;
 }
+
+function changeWords(
+  changes: readonly { what: string; before: string | null; after: string | null }[],
+): string {
+  return changes
+    .map(({ what, before, after }) => `${what}: ${after ?? "none"} (before: ${before ?? "none"})`)
+    .join("; ");
+}
+
+/** "H10, H11 and H12". */
+const partWords = (parts: readonly (readonly string[])[], between: string) =>
+  parts.map((part) => part.join(", ")).join(between);
 
 /**
  * One sentence on an entry, and a second line where there is more to say.
@@ -366,10 +402,29 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
     case "column-changed":
       return {
         text: `Changed the column ${entry.data.name}`,
-        detail: entry.data.changes
-          .map(({ what, before, after }) => `${what}: ${after ?? "none"} (before: ${before ?? "none"})`)
-          .join("; "),
+        detail: changeWords(entry.data.changes),
       };
+    case "atoms-split":
+      return {
+        text: `Took equivalent atoms apart: ${partWords(entry.data.parts, " and ")}`,
+        detail: "Each part is a signal of its own in averages.",
+      };
+    case "atoms-joined":
+      return {
+        text: `Put equivalent atoms together again: ${partWords(entry.data.parts, " with ")}`,
+        detail: null,
+      };
+    case "measured-kept": {
+      const { quantity, unit, count, changes, more } = entry.data;
+      const told = changeWords(changes);
+      return {
+        text:
+          count === 0
+            ? `Took the measured values of ${quantity} away`
+            : `Kept ${plural(count, "measured value")} of ${quantity}${unit === null ? "" : `, ${unit}`}`,
+        detail: more > 0 ? `${told}; and ${plural(more, "further change")}` : told,
+      };
+    }
     case "column-removed":
       return { text: `Removed the column ${entry.data.name}`, detail: null };
     case "plan-saved":
@@ -379,6 +434,8 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
       };
     case "plan-removed":
       return { text: `Removed the plan ${entry.data.name}`, detail: null };
+    case "plan-restored":
+      return { text: `Brought the plan ${entry.data.name} back`, detail: null };
     case "column-restored":
       return { text: `Brought the column ${entry.data.name} back`, detail: null };
     case "edition-frozen":

@@ -6,8 +6,9 @@ import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import { loadLevelEnergies } from "~/services/levels/load-level-energies.server";
-import { listPlans } from "~/services/plans/list-plans.server";
-import { removePlans, savePlans } from "~/services/plans/save-plans.server";
+import { listPlans, listRemovedPlans } from "~/services/plans/list-plans.server";
+import { removePlans } from "~/services/plans/remove-plans.server";
+import { savePlans } from "~/services/plans/save-plans.server";
 import type { Route } from "./+types/plan";
 
 export function meta({ matches }: Route.MetaArgs) {
@@ -17,8 +18,12 @@ export function meta({ matches }: Route.MetaArgs) {
 export async function loader({ params, context }: Route.LoaderArgs) {
   const asked = { actor: context.get(actorContext), ensembleId: params.id };
   return forPage(context.get(requestIdContext), async () => {
-    const [energies, saved] = await Promise.all([loadLevelEnergies(asked), listPlans(asked)]);
-    return { energies, saved };
+    const [energies, saved, removed] = await Promise.all([
+      loadLevelEnergies(asked),
+      listPlans(asked),
+      listRemovedPlans(asked),
+    ]);
+    return { energies, saved, removed };
   });
 }
 
@@ -49,7 +54,8 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
       return { ok: true as const, saved };
     }
     case "remove":
-      await removePlans({ actor, ensembleId, id: text("id") });
+    case "restore":
+      await removePlans({ actor, ensembleId, id: text("id"), undo: text("intent") === "restore" });
       return { ok: true as const, saved: null };
     default:
       throw notFound();

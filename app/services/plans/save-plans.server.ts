@@ -1,4 +1,4 @@
-import { and, eq } from "drizzle-orm";
+import { and, eq, isNull } from "drizzle-orm";
 import { z } from "zod";
 import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
@@ -17,7 +17,8 @@ export interface SavedAs {
   version: number;
 }
 
-function taken(name: string): DomainError {
+/** 409 for the name of another plan. */
+export function planNameTaken(name: string): DomainError {
   const message = `There is a plan "${name}" already. Open that one, or give this one another name.`;
   return new DomainError("conflict", "The name is taken", message, { faults: [{ field: "name", message }] });
 }
@@ -76,8 +77,8 @@ async function store(
   const named = await tx
     .select({ id: plans.id })
     .from(plans)
-    .where(and(eq(plans.ensembleId, ensembleId), eq(plans.name, asked.name)));
-  if (named[0] && named[0].id !== asked.id) throw taken(asked.name);
+    .where(and(eq(plans.ensembleId, ensembleId), eq(plans.name, asked.name), isNull(plans.deletedAt)));
+  if (named.some(({ id }) => id !== asked.id)) throw planNameTaken(asked.name);
   if (asked.id === undefined) {
     const id = newId();
     await tx.insert(plans).values({
@@ -94,7 +95,7 @@ async function store(
   const rows = await tx
     .select({ version: plans.version, name: plans.name })
     .from(plans)
-    .where(and(eq(plans.ensembleId, ensembleId), eq(plans.id, asked.id)));
+    .where(and(eq(plans.ensembleId, ensembleId), eq(plans.id, asked.id), isNull(plans.deletedAt)));
   const row = rows[0];
   if (row === undefined) throw notFound();
   if (row.version !== asked.version) {
@@ -110,18 +111,4 @@ async function store(
     .set({ name: asked.name, plan: asked.plans, version, changedAt: now })
     .where(eq(plans.id, asked.id));
   return { id: asked.id, version };
-}
-
-/** Removes a stored set of plans. */
-export async function removePlans(options: { actor: Actor; ensembleId: string; id: string }): Promise<void> {
-  const grant = await accessEnsemble(options.actor, "compute", options.ensembleId);
-  await inTransaction(async (tx) => {
-    await lockEnsemble(tx, grant);
-    const at = and(eq(plans.ensembleId, grant.ensembleId), eq(plans.id, options.id));
-    const rows = await tx.select({ name: plans.name }).from(plans).where(at);
-    const row = rows[0];
-    if (row === undefined) throw notFound();
-    await tx.delete(plans).where(at);
-    await writeEntry(tx, grant, grant, { type: "plan-removed", data: { id: options.id, name: row.name } });
-  });
 }

@@ -298,6 +298,10 @@ const FORM_ACTS: Act[] = [
   act("/ensembles/:id/columns", "span", { column: "none" }, "404 404 404"),
   act("/ensembles/:id/averages", "rule", { column: "none", rule: "linear" }, ANALYSTS(404)),
   act("/ensembles/:id/averages", "observe", { observable: "distance", atoms: "1,999" }, ANALYSTS(422)),
+  act("/ensembles/:id/averages", "split", { parts: "1;999" }, ANALYSTS(422)),
+  // Nothing was taken apart: there is nothing to do.
+  act("/ensembles/:id/averages", "join", { atom: "1" }, ANALYSTS(200)),
+  act("/ensembles/:id/averages", "measured", { record: "{}", version: "0" }, ANALYSTS(422)),
   act(
     "/ensembles/:id/distinct-set",
     "sift",
@@ -308,6 +312,7 @@ const FORM_ACTS: Act[] = [
   act("/ensembles/:id/compare", "restore", { outside: "none" }, ANALYSTS(404)),
   act("/ensembles/:id/plan", "save", { name: "Second", plans: "{}" }, ANALYSTS(422)),
   act("/ensembles/:id/plan", "remove", { id: "none" }, ANALYSTS(404)),
+  act("/ensembles/:id/plan", "restore", { id: "none" }, ANALYSTS(404)),
   act(
     "/ensembles/:id/hand-over",
     "freeze",

@@ -25,6 +25,7 @@ const PAGE_ACTS: [page: string, fields: Record<string, string>][] = [
   ["/ensembles/:ensemble/compare", { intent: "remove", outside: "@outside" }],
   ["/ensembles/:ensemble/compare", { intent: "restore", outside: "@outside" }],
   ["/ensembles/:ensemble/plan", { intent: "remove", id: "@plan" }],
+  ["/ensembles/:ensemble/plan", { intent: "restore", id: "@plan" }],
   [
     "/ensembles/:ensemble/hand-over",
     { intent: "freeze", sift: "@sift", temperature: "298.15", weights: "auto", title: "T", remark: "R" },
