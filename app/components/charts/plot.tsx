@@ -111,7 +111,8 @@ export function Plot({
           width="100%"
           height={height}
           initialDimension={{ width: 438, height }}
-          className="[&_svg]:overflow-visible"
+          // Never wider than its place, not even before the place is known, nor on paper.
+          className="@container [&_.recharts-wrapper]:max-w-[100cqw] [&_svg]:overflow-visible"
         >
           <ComposedChart
             margin={{ ...MARGIN, bottom: FOOT - 30 }}

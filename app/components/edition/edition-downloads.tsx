@@ -42,7 +42,11 @@ export function EditionDownloads({
                 key={file.position}
                 className="keep figures grid grid-cols-[minmax(0,1fr)_auto] gap-x-4 border-b border-rule py-2"
               >
-                <a className={`break-all ${linkClass}`} href={addresses.source(file.position)} download>
+                <a
+                  className={`[overflow-wrap:anywhere] ${linkClass}`}
+                  href={addresses.source(file.position)}
+                  download
+                >
                   {file.name}
                 </a>
                 <span className="text-ink-2">{formatBytes(file.bytes)}</span>
@@ -143,9 +147,13 @@ function Line({
         <a className={linkClass} href={to} download aria-label={`${words.title}, ${name}`}>
           {words.title}
         </a>
-        <span className="block text-xs break-all text-ink-3">
+        <span className="block text-xs text-ink-3">
           {name}
-          {sha256 === null ? "" : `, SHA-256 ${sha256.slice(0, 8)} …`}
+          {sha256 === null ? null : (
+            <>
+              , <span className="whitespace-nowrap">SHA-256 {sha256.slice(0, 8)} …</span>
+            </>
+          )}
         </span>
       </span>
       <span className="text-ink-2">{words.format}</span>

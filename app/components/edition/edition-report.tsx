@@ -8,6 +8,7 @@ import { Formula } from "~/components/ui/formula";
 import { LevelName } from "~/components/ui/level-marker";
 import { Note } from "~/components/ui/note";
 import { FlatMoleculeDrawing } from "~/components/workbench/flat-drawing";
+import { changeSentence } from "~/lib/edition/compare";
 import type { EditionView } from "~/lib/edition/views";
 import { formatCount, formatDateTime, formatEnergy, plural, trimmed, withUnit } from "~/lib/format";
 import { byPopulation, outsideWindow } from "~/lib/workbench/conformers";
@@ -131,6 +132,7 @@ function HowSure({ edition }: { edition: EditionView }) {
         </>
       ) : null}
       <FindingList findings={know} />
+      <Changed edition={edition} />
       <Verified edition={edition} />
     </section>
   );
@@ -155,6 +157,17 @@ function FindingList({
         </li>
       ))}
     </ul>
+  );
+}
+
+/** What is new in it, for whoever has read the edition before. */
+function Changed({ edition }: { edition: EditionView }) {
+  if (edition.number === 1 || edition.changed.length === 0) return null;
+  return (
+    <div className="keep figures">
+      <h3 className="mt-5 text-sm font-semibold">Since the edition before</h3>
+      <p className="mt-2 border-y border-rule py-3">{changeSentence(edition.changed)}</p>
+    </div>
   );
 }
 
@@ -228,7 +241,9 @@ function Method({ edition }: { edition: EditionView }) {
         </CopyButton>
       </p>
       <h3 className="mt-5 text-sm font-semibold">To cite it</h3>
-      <p className="figures mt-1 max-w-read text-xs break-all text-ink-2">{edition.citations.text}</p>
+      <p className="figures mt-1 max-w-read text-xs [overflow-wrap:anywhere] text-ink-2">
+        {edition.citations.text}
+      </p>
       {edition.level ? (
         <p className="figures mt-4 flex flex-wrap items-center gap-x-4 text-ink-2">
           <LevelName name={edition.level.name} ordinal={edition.level.ordinal} />

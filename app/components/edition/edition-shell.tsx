@@ -3,7 +3,6 @@ import type { ReactNode } from "react";
 import { BrandMark } from "~/components/layout/brand";
 import { Badge } from "~/components/ui/badge";
 import { Button, buttonClass } from "~/components/ui/button";
-import { changeSentence } from "~/lib/edition/compare";
 import type { EditionView } from "~/lib/edition/views";
 import { formatDate } from "~/lib/format";
 import type { EditionAddresses } from "./addresses";
@@ -64,10 +63,7 @@ export function EditionShell({
           {children}
         </main>
         <footer className="border-t border-rule text-xs text-ink-3 print:hidden">
-          <div className={`${SIDES} figures flex flex-wrap justify-between gap-x-6 gap-y-2 py-4`}>
-            <p>{foot}</p>
-            {edition.number > 1 ? <p>Since the edition before: {changeSentence(edition.changed)}</p> : null}
-          </div>
+          <p className={`${SIDES} figures py-4`}>{foot}</p>
         </footer>
       </div>
       <div className="edition-foot figures text-xs text-ink-3">

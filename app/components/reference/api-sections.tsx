@@ -4,6 +4,7 @@ import { Badge } from "~/components/ui/badge";
 import { CopyButton } from "~/components/ui/copy-button";
 import { labelClass } from "~/components/ui/field";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { linkClass } from "~/components/ui/text-link";
 import type { CallView } from "~/lib/api/describe-calls";
 import push from "~/lib/api/examples/push-ensembles.sh?raw";
 import read from "~/lib/api/examples/read_populations.py?raw";
@@ -62,7 +63,11 @@ function Begin({ limits }: { limits: ApiLimits }) {
       <p>
         Energies are kcal/mol (but for <code>energyUnit</code> and a level’s own <code>unit</code>), lengths
         Å, temperatures K. Frames count from 1 in file order, on through all files of an upload. A level is
-        given by its id or its name. <a href="/api/v1/openapi.json">The same as OpenAPI 3.1</a>.
+        given by its id or its name.{" "}
+        <a className={linkClass} href="/api/v1/openapi.json">
+          The same as OpenAPI 3.1
+        </a>
+        .
       </p>
     </>
   );
@@ -133,14 +138,16 @@ function Call({ call }: { call: CallView }) {
             {call.fields.map((field) => (
               <Tr key={`${field.place} ${field.name}`}>
                 <Td wrap className="align-top">
-                  <code>{field.name}</code>
+                  <code className="mr-2 sm:whitespace-nowrap">{field.name}</code>
                   {field.required ? (
-                    <span className="ml-2">
+                    <span className="inline-block">
                       <Badge>needed</Badge>
                     </span>
                   ) : null}
                 </Td>
-                <Td className="align-top text-ink-2 max-sm:hidden">{field.place}</Td>
+                <Td wrap className="align-top text-ink-2 max-sm:hidden">
+                  <span className="whitespace-nowrap">{field.place}</span>
+                </Td>
                 <Td wrap className="align-top">
                   {field.words}
                   <span className="block text-xs [overflow-wrap:anywhere] text-ink-3">{field.type}</span>
@@ -164,8 +171,9 @@ function Call({ call }: { call: CallView }) {
 
 function Listing({ label, text }: { label: string; text: string }): ReactNode {
   return (
-    <div>
-      <div className="mb-2 flex items-baseline justify-between gap-4">
+    // Wider than text where there is room: a line of a program is read whole.
+    <div className="xl:w-[54rem]">
+      <div className="mb-2 flex items-baseline justify-between gap-4 text-sm">
         <h3 className={labelClass}>{label}</h3>
         <CopyButton as="link" text={text}>
           Copy

@@ -25,6 +25,8 @@ const DOCUMENT = {
           size: { type: "number", description: "In Å" },
           kind: { enum: ["a", "b"] },
           parts: { type: "array", items: { type: "integer" } },
+          sheet: { type: "string", format: "binary" },
+          sheets: { type: "array", items: { type: "string", format: "binary" } },
           also: { anyOf: [{ type: "string" }, { type: "null" }] },
         },
       },
@@ -41,6 +43,8 @@ describe("the calls of a document", () => {
       { name: "size", place: "JSON body", type: "number", required: true, words: "In Å" },
       { name: "kind", place: "JSON body", type: "one of a, b", required: false, words: "" },
       { name: "parts", place: "JSON body", type: "list of integer", required: false, words: "" },
+      { name: "sheet", place: "JSON body", type: "file", required: false, words: "" },
+      { name: "sheets", place: "JSON body", type: "one or more files", required: false, words: "" },
       { name: "also", place: "JSON body", type: "string or null", required: false, words: "" },
     ]);
     expect(call?.answers).toEqual([

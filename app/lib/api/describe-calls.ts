@@ -46,6 +46,8 @@ function typeWords(document: Json, value: unknown): string {
   if (schema.const !== undefined) return JSON.stringify(schema.const);
   const choices = [schema.anyOf, schema.oneOf].find(Array.isArray);
   if (choices) return [...new Set(choices.map((one) => typeWords(document, one)))].join(" or ");
+  if (schema.format === "binary") return "file";
+  if (schema.type === "array" && objectOf(schema.items).format === "binary") return "one or more files";
   if (schema.type === "array") return `list of ${typeWords(document, schema.items)}`;
   if (Array.isArray(schema.type)) return schema.type.map(String).join(" or ");
   return textOf(schema.type) || "value";
