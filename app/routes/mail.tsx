@@ -26,9 +26,12 @@ export default function Page({ loaderData }: Route.ComponentProps) {
       <div className={`pt-8 pb-16 max-sm:pt-4 ${pageClass}`}>
         <h1 className="text-lg font-semibold tracking-title sm:text-xl">Letters kept here</h1>
         <Finding wide>
-          No mail server is set, so letters stay on this machine.{" "}
-          {capital(pluralWord(letters.length, "letter"))} {letters.length === 1 ? "is" : "are"} shown, newest
-          first.
+          No mail server is set, so letters stay on this machine
+          {letters.length === 0
+            ? "."
+            : letters.length === 1
+              ? "; there is one."
+              : `; ${pluralWord(letters.length, "letter")}, newest first.`}
         </Finding>
         <div className="mt-9 grid max-w-[46rem] gap-8">
           {letters.length === 0 ? (

@@ -120,15 +120,20 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
       <h1 className="text-lg font-semibold tracking-title sm:text-xl">People of {team.name}</h1>
       <Finding wide>{peopleFinding(people)}</Finding>
       <TeamTabs team={team.id} series={series} chosen={null} at="people" />
-      <div className="mt-8 grid items-start gap-x-12 gap-y-8 lg:grid-cols-[minmax(0,1fr)_20rem] xl:grid-cols-[minmax(0,1fr)_22.5rem]">
-        <div className="grid gap-9">
+      <div className="mt-8 grid items-start gap-x-12 gap-y-9 lg:grid-cols-[minmax(0,1fr)_20rem] lg:grid-rows-[auto_1fr] xl:grid-cols-[minmax(0,1fr)_22.5rem]">
+        <div className="min-w-0">
           <MembersTable team={team.id} people={people} answer={answer} now={now} />
-          {people.mayManage ? <TeamSettings team={team} answer={answer} /> : null}
         </div>
-        <aside className="grid gap-8">
+        {/* On a phone before the settings: whoever invites need not pass the team's deletion. */}
+        <aside className="grid gap-8 lg:col-start-2 lg:row-span-2 lg:row-start-1">
           {people.mayManage ? <InviteForm days={days} answer={answer} /> : null}
           <RoleTable />
         </aside>
+        {people.mayManage ? (
+          <div className="min-w-0">
+            <TeamSettings team={team} answer={answer} />
+          </div>
+        ) : null}
       </div>
     </div>
   );
