@@ -4,7 +4,7 @@ import { Finding } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
 import { linkClass } from "~/components/ui/text-link";
 import { requestIdContext } from "~/context";
-import { capital, formatMoment, pluralWord } from "~/lib/format";
+import { formatMoment, pluralWord } from "~/lib/format";
 import { forPage } from "~/services/http.server";
 import { readLocalMail } from "~/services/mail/read-local.server";
 import type { Route } from "./+types/mail";
