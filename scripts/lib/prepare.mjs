@@ -1,11 +1,14 @@
+import { execFile } from "node:child_process";
 import { existsSync } from "node:fs";
 import path from "node:path";
+import { promisify } from "node:util";
 import { openDatabase } from "../database.mjs";
 import { needProgram } from "./debian.mjs";
 import { needPackages } from "./packages.mjs";
 import { portIsFree, ROOT, StartError } from "./processes.mjs";
 import { localSecrets } from "./secrets.mjs";
 
+const runFile = promisify(execFile);
 const [major, minor] = process.versions.node.split(".").map(Number);
 
 /** Settings from `.env`, where there is one; the environment itself wins. */
@@ -42,19 +45,14 @@ export function dataFolder() {
  * Secrets that a loopback instance keeps itself are filled in.
  */
 async function checkSettings() {
-  const { tsImport } = await import("tsx/esm/api");
-  const { isLoopback, readEnv } = await tsImport("../../app/env.server.ts", import.meta.url);
-  const origin = process.env.APP_ORIGIN || "http://127.0.0.1";
-  if (process.env.NODE_ENV !== "production" || isLoopback(origin)) {
-    const secrets = localSecrets(dataFolder());
-    process.env.SESSION_SECRET ||= secrets.sessionSecret;
-    process.env.DEMO_PASSWORD ||= secrets.demoPassword;
-  }
   process.env.DATA_DIRECTORY = dataFolder();
-  return readEnv({
-    ...process.env,
-    DATABASE_URL: process.env.DATABASE_URL || "mysql://not-yet@127.0.0.1/lowlying",
-  });
+  const { stdout } = await runFile(process.execPath, [path.join(import.meta.dirname, "check-settings.mjs")]);
+  const { fault, loopback } = JSON.parse(stdout);
+  if (fault) throw new StartError(fault);
+  if (!loopback) return;
+  const secrets = localSecrets(dataFolder());
+  process.env.SESSION_SECRET ||= secrets.sessionSecret;
+  process.env.DEMO_PASSWORD ||= secrets.demoPassword;
 }
 
 /**
