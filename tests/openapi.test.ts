@@ -117,10 +117,14 @@ describe("openapi.json", () => {
     expect(held).toBeGreaterThan(0);
   });
 
-  it("can be read by a program: every schema becomes a reader of values", () => {
+  it("can be read by a program: every schema becomes a reader that takes no other values", () => {
     for (const name of Object.keys(document.components.schemas ?? {})) {
       const reader = readerOf(document, { $ref: `#/components/schemas/${name}` });
-      expect(reader.safeParse(Symbol(name)).success, name).toBe(false);
+      for (const other of [null, 3, "text", []]) expect(reader.safeParse(other).success, name).toBe(false);
     }
+    const warning = readerOf(document, { $ref: "#/components/schemas/Warning" });
+    expect(warning.safeParse({ code: "E12", message: "Odd." }).success).toBe(true);
+    expect(warning.safeParse({ code: "E12" }).success).toBe(false);
+    expect(warning.safeParse({ code: "E12", message: "Odd.", more: 1 }).success).toBe(false);
   });
 });

@@ -5,8 +5,9 @@ import { members } from "~/db/schema.server";
 import { problemSchema, siftSchema } from "~/lib/api/schemas";
 import { openApiDocument } from "~/services/openapi.server";
 import { join, makeMember, makeTeam, tokenOf } from "../factories/people";
-import { frame, makeLab, sifted, takenIn, upload, withJobs } from "../factories/upload";
+import { formOf, frame, makeLab, sifted, takenIn, upload, withJobs } from "../factories/upload";
 import { call, routeRows } from "../setup/app";
+import { openApiObject, operationsOf, readerOf } from "../setup/openapi-rules";
 
 let runner: Awaited<ReturnType<typeof withJobs>>;
 let lab: Awaited<ReturnType<typeof makeLab>>;
@@ -237,6 +238,108 @@ describe("GET /openapi.json", () => {
     expect(siftSchema.strict().parse(sift)).toEqual(sift);
     const required = document.components.schemas.Sift.required;
     expect(Object.keys(sift)).toEqual(expect.arrayContaining(required));
+  });
+});
+
+describe("answers of real calls", () => {
+  const document = openApiObject.parse(JSON.parse(JSON.stringify(openApiDocument())));
+  const operations = operationsOf(document);
+  const met = new Set<string>();
+
+  /** Makes a call and holds its answer to what the document says of that status. */
+  const ask = async (method: string, template: string, path: string, init: object = {}) => {
+    const response = await call(`/api/v1${path}`, { method, token: tokens.analyst, ...init });
+    const found = operations.find((one) => one.method === method && one.path === template);
+    const where = `${method} ${template} ${response.status}`;
+    const described = found?.operation.responses[String(response.status)];
+    if (!found || !described || !("description" in described) || !("content" in described)) {
+      throw new Error(`${where} is not described: ${await response.text()}`);
+    }
+    const type = response.headers.get("content-type")?.split(";", 1)[0] ?? "";
+    expect(Object.keys(described.content ?? {}), where).toEqual([type]);
+    const text = await response.text();
+    const body = type.endsWith("json") ? JSON.parse(text) : text;
+    const read = readerOf(document, described.content?.[type]?.schema).safeParse(body);
+    expect(read.error?.issues ?? [], where).toEqual([]);
+    for (const name of Object.keys(described.headers ?? {}))
+      expect(response.headers.has(name), where).toBe(true);
+    met.add(`${found.operation.operationId} ${response.status}`);
+    return body;
+  };
+  const send = (template: string, path: string, body: object) =>
+    ask("POST", template, path, {
+      body: JSON.stringify(body),
+      headers: { "content-type": "application/json" },
+    });
+  const sendFiles = (template: string, path: string, name: string, text: string, words = {}) =>
+    ask("POST", template, path, { body: formOf([{ name, content: text }], words) });
+
+  it("of taking in, asking and deciding fit their schemas", async () => {
+    const files = frame("energy=1.5 shape=1") + frame("energy=2.25 shape=2");
+    const { id } = await sendFiles("/ensembles", "/ensembles", "s.xyz", files, fields);
+    await sendFiles("/ensembles", "/ensembles", "s.xyz", files, fields);
+    await sendFiles("/ensembles", "/ensembles", "s.xyz", files, { ...fields, energyUnit: "kJ/mol" });
+    await sendFiles("/ensembles", "/ensembles", "empty.xyz", "", fields);
+    await ask("GET", "/ensembles", "/ensembles");
+    await ask("GET", "/ensembles/{id}", `/ensembles/${id}`);
+    const more = [`/ensembles/${id}/files`, "t.xyz", frame("energy=3 shape=3")] as const;
+    await sendFiles("/ensembles/{id}/files", ...more);
+    await sendFiles("/ensembles/{id}/files", ...more);
+    await send("/ensembles/{id}/frames/{frame}/hold", `/ensembles/${id}/frames/3/hold`, { reason: "to see" });
+    await send("/ensembles/{id}/frames/{frame}/release", `/ensembles/${id}/frames/3/release`, {
+      reason: "seen",
+    });
+    await send("/ensembles/{id}/frames/{frame}/release", `/ensembles/${id}/frames/3/release`, {
+      reason: "again",
+    });
+    await send("/ensembles/{id}/reread", `/ensembles/${id}/reread`, { ...fields, energyUnit: "kJ/mol" });
+
+    const open = frame("1.5 7.5") + frame("2.5 8.25");
+    const asked = await sendFiles("/ensembles", "/ensembles", "o.xyz", open, fields);
+    const [question] = asked.intake.questions;
+    const answers = [{ id: question.id, option: question.options[0].id }];
+    await send("/ensembles/{id}/answers", `/ensembles/${asked.id}/answers`, { answers });
+    await send("/ensembles/{id}/answers", `/ensembles/${asked.id}/answers`, { answers: [] });
+    await ask("GET", "/ensembles/{id}", `/ensembles/${"a".repeat(16)}`);
+    await ask("GET", "/ensembles/{id}", `/ensembles/${id}`, { token: "lowl_wrong" });
+    await ask("POST", "/ensembles", "/ensembles", { token: tokens.reader });
+    await ask("POST", "/ensembles", "/ensembles", { body: "x", headers: { "content-type": "text/plain" } });
+  });
+
+  it("of computing and handing out fit their schemas", async () => {
+    const on = { ensemble: `/ensembles/${ids.ensemble}`, sift: `/sifts/${ids.sift}` };
+    const table = "frame,B [kcal/mol],dipole [D]\n1,0.0,2.5\n2,0.75,\n";
+    const columns = ["/ensembles/{id}/columns", `${on.ensemble}/columns`, "b.csv", table] as const;
+    await sendFiles(...columns, { preview: "true" });
+    await sendFiles(...columns);
+    await sendFiles(...columns);
+    await ask("GET", "/ensembles/{id}", on.ensemble);
+    await ask("GET", "/ensembles/{id}/comparison", `${on.ensemble}/comparison?level=A&reference=B`);
+    await ask("GET", "/ensembles/{id}/comparison", `${on.ensemble}/comparison?level=A&reference=none`);
+    const request = { level: "A", rmsdTolerance: 0.31, window: 1 };
+    const sift = await send("/ensembles/{id}/sifts", `${on.ensemble}/sifts`, request);
+    await send("/ensembles/{id}/sifts", `${on.ensemble}/sifts`, { level: "none" });
+    await ask("GET", "/sifts/{id}", `/sifts/${sift.id}`);
+    await ask("GET", "/sifts/{id}", `/sifts/${sift.id}?wait=60`);
+    await ask("DELETE", "/sifts/{id}", `/sifts/${sift.id}`);
+    await ask("GET", "/sifts/{id}/populations", `${on.sift}/populations?temperature=310`);
+    await ask("GET", "/sifts/{id}/populations", `${on.sift}/populations?temperature=cold`);
+    await ask("GET", "/sifts/{id}/averages.csv", `${on.sift}/averages.csv?sigma=0.5`);
+    for (const ending of ["xyz", "sdf", "csv", "json"]) {
+      await ask("GET", `/sifts/{id}/export.${ending}`, `${on.sift}/export.${ending}`);
+    }
+    await ask("GET", "/openapi.json", "/openapi.json", { token: undefined });
+  });
+
+  it("were had of every call and every way in which it can work", () => {
+    const described = operations.flatMap(({ operation }) =>
+      Object.keys(operation.responses)
+        .filter((status) => status < "300")
+        .map((status) => `${operation.operationId} ${status}`),
+    );
+    expect([...met].filter((one) => / 2\d\d$/.test(one)).sort()).toEqual(described.sort());
+    const refused = [...met].map((one) => one.split(" ")[1]).filter((status = "") => status >= "400");
+    expect([...new Set(refused)].sort()).toEqual(["401", "403", "404", "409", "415", "422"]);
   });
 });
 
