@@ -82,6 +82,12 @@ function Head({ edition }: { edition: EditionView }) {
         {more.length > 0 ? (
           <p className="figures mt-2 text-base text-pretty text-ink-2">{more.join(" ")}</p>
         ) : null}
+        {edition.number > 1 && edition.changed.length > 0 ? (
+          <p className="figures mt-3 text-pretty text-ink-2">
+            <strong className="font-semibold">Since the edition before.</strong>{" "}
+            {changeSentence(edition.changed)}
+          </p>
+        ) : null}
         {edition.remark ? <Note className="mt-4 whitespace-pre-line">{edition.remark}</Note> : null}
       </div>
       <div>
@@ -132,7 +138,6 @@ function HowSure({ edition }: { edition: EditionView }) {
         </>
       ) : null}
       <FindingList findings={know} />
-      <Changed edition={edition} />
       <Verified edition={edition} />
     </section>
   );
@@ -157,17 +162,6 @@ function FindingList({
         </li>
       ))}
     </ul>
-  );
-}
-
-/** What is new in it, for whoever has read the edition before. */
-function Changed({ edition }: { edition: EditionView }) {
-  if (edition.number === 1 || edition.changed.length === 0) return null;
-  return (
-    <div className="keep figures">
-      <h3 className="mt-5 text-sm font-semibold">Since the edition before</h3>
-      <p className="mt-2 border-y border-rule py-3">{changeSentence(edition.changed)}</p>
-    </div>
   );
 }
 

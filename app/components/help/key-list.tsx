@@ -14,7 +14,7 @@ export function KeyList({ groups, level = "h3" }: { groups: readonly KeyGroup[];
                 key={keys.join(" ")}
                 className="grid grid-cols-[11rem_minmax(0,1fr)] gap-x-4 border-t border-rule py-1.5 max-sm:grid-cols-[8rem_minmax(0,1fr)]"
               >
-                <dt className="flex flex-wrap gap-1">
+                <dt className="flex flex-wrap content-start gap-1">
                   {keys.map((key) => (
                     <kbd
                       key={key}

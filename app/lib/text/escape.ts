@@ -49,6 +49,18 @@ export function escapeControls(text: string): string {
 }
 
 /**
+ * The same for a text of lines on a page: line breaks and tabs stay.
+ *
+ * @example escapeLines("one\ntwo\u202e") // "one\ntwo\\u202e"
+ */
+export function escapeLines(text: string): string {
+  return text
+    .split(/([\n\r\t])/)
+    .map((part, k) => (k % 2 === 1 ? part : escapeControls(part)))
+    .join("");
+}
+
+/**
  * What a message quotes from a file: escaped, and cut at 80 characters with an ellipsis as the last.
  *
  * @example quoteFound("1,234") // "1,234"

@@ -4,6 +4,7 @@ import { averagedProperties } from "../../lib/edition/counters.ts";
 import { editionRows } from "../../lib/edition/rows.ts";
 import { shownRows } from "../../lib/edition/shown.ts";
 import type { EditionShape, EditionView, VerifiedView } from "../../lib/edition/views.ts";
+import { escapeControls } from "../../lib/text/escape.ts";
 import { type FoundEdition, findPositions, type LastVerification } from "./find-edition.server.ts";
 
 /** Rows of the table of a page; the files hold all. */
@@ -70,14 +71,15 @@ export async function toEditionView(
   const frozenAt = edition.createdAt.toISOString();
   const cited = {
     team: content.team,
-    ensemble: content.ensemble.name,
+    ensemble: escapeControls(content.ensemble.name),
     number: edition.number,
     title: edition.title,
     frozenAt,
     contentSha256: edition.contentSha256,
     version: edition.version,
   };
-  const { name, formula, atoms, elements, bonds, chirality, frames, held } = content.ensemble;
+  const { formula, atoms, elements, bonds, chirality, frames, held } = content.ensemble;
+  const name = escapeControls(content.ensemble.name);
   return {
     number: edition.number,
     title: edition.title,

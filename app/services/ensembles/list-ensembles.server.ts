@@ -1,6 +1,7 @@
 import { and, asc, count, desc, eq, inArray, isNull, or } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, ensembleFiles, ensembles, frames, series } from "../../db/schema.server.ts";
+import { escapeControls } from "../../lib/text/escape.ts";
 import type { EnsembleRow } from "../../lib/views.ts";
 import { defaultsOf, settingsApart } from "../../lib/workbench/recipe-words.ts";
 import { type Actor, accessTeam, type Grant } from "../auth/access.server.ts";
@@ -111,6 +112,8 @@ export async function listEnsembles(options: {
     const chosen = chooseSift(sifts.get(row.id) ?? []);
     return {
       ...row,
+      name: escapeControls(row.name),
+      series: { ...row.series, name: escapeControls(row.series.name) },
       waiting: waiting.get(row.id) ?? 0,
       levels: (levels.get(row.id) ?? []).map(({ name, ordinal }) => ({ name, ordinal })),
       fileNames: (files.get(row.id) ?? []).map((file) => file.name),

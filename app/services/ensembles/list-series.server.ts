@@ -1,6 +1,7 @@
 import { and, asc, count, eq, isNull, sum } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { ensembles, series } from "../../db/schema.server.ts";
+import { escapeControls } from "../../lib/text/escape.ts";
 import { type Actor, accessTeam } from "../auth/access.server.ts";
 
 export interface SeriesRow {
@@ -25,5 +26,9 @@ export async function listSeries(options: { actor: Actor; teamId: string }): Pro
     .where(eq(series.teamId, grant.teamId))
     .groupBy(series.id, series.name)
     .orderBy(asc(series.name));
-  return rows.map((row) => ({ ...row, frames: Number(row.frames ?? 0) }));
+  return rows.map((row) => ({
+    ...row,
+    name: escapeControls(row.name),
+    frames: Number(row.frames ?? 0),
+  }));
 }

@@ -3,6 +3,7 @@ import { db } from "../../db/client.server.ts";
 import { batches, ensembleFiles, ensembles, series, sources, teams } from "../../db/schema.server.ts";
 import { looksLikeLevel } from "../../lib/columns-view.ts";
 import type { Graph } from "../../lib/structure.ts";
+import { escapeControls } from "../../lib/text/escape.ts";
 import type { EnsembleView, FileView } from "../../lib/views.ts";
 import { type Actor, accessEnsemble, roleMay } from "../auth/access.server.ts";
 import { notFound } from "../http.server.ts";
@@ -90,7 +91,7 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
   const columns = await findColumns(ensemble.id, strip);
   return {
     id: ensemble.id,
-    name: ensemble.name,
+    name: escapeControls(ensemble.name),
     formula: ensemble.formula,
     atoms: ensemble.atoms,
     frames: ensemble.frames,
@@ -102,7 +103,7 @@ export async function loadEnsemble(options: { actor: Actor; ensembleId: string }
     chiralityNote: ensemble.chiralityNote,
     example: ensemble.example,
     team: row.team,
-    series: row.series,
+    series: { ...row.series, name: escapeControls(row.series.name) },
     elements: [...graph.elements],
     bonds: [...graph.bonds],
     bondTable: statedTable(ensemble.bondTable, graph),

@@ -5,6 +5,7 @@ import { columns, ensembles, frames, intakeMessages, logbook, questions } from "
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { HoldReason, IntakeMessage, IntakeQuestion, QuestionOption } from "../../lib/intake/report.ts";
 import { splitFrames } from "../../lib/logbook/entries.ts";
+import { escapeControls } from "../../lib/text/escape.ts";
 import type { EnergiesInForce, FrameView, IntakeView } from "../../lib/views.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 import { numbersOfFiles } from "./numbers-of-files.server.ts";
@@ -73,7 +74,7 @@ async function findFrames(ensembleId: string, state: "held" | "remarked"): Promi
     number: row.number,
     file: row.file,
     line: row.line,
-    label: row.label,
+    label: row.label === null ? null : escapeControls(row.label),
     state: row.state,
     holdReason: row.holdReason,
     note: row.note,
@@ -148,7 +149,7 @@ async function findBecame(grant: Grant, ensembleId: string): Promise<IntakeView[
     );
   return living.map(({ id, name }) => ({
     ensembleId: id,
-    name,
+    name: escapeControls(name),
     frames: made.filter((one) => one.ensembleId === id).flatMap((one) => one.frames),
   }));
 }

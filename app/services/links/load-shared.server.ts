@@ -3,6 +3,7 @@ import { db } from "../../db/client.server.ts";
 import { editions, ensembleFiles, logbook, sources } from "../../db/schema.server.ts";
 import type { EditionView } from "../../lib/edition/views.ts";
 import { describeEntry, type LogbookType, logbookEntrySchema } from "../../lib/logbook/entries.ts";
+import { escapeLines } from "../../lib/text/escape.ts";
 import { accessBySecret, type LinkGrant } from "../auth/access.server.ts";
 import { toEditionView } from "../editions/edition-view.server.ts";
 import { findEdition, findPositions, lastVerification } from "../editions/find-edition.server.ts";
@@ -64,7 +65,9 @@ async function sharedEntries(grant: LinkGrant, until: Date): Promise<SharedEntry
     const read = logbookEntrySchema.safeParse({ type, data });
     if (!read.success) return [];
     const by = tokenId !== null ? "token" : userId !== null ? "person" : "product";
-    return [{ at: at.toISOString(), by, ...describeEntry(read.data) }];
+    const { text, detail } = describeEntry(read.data);
+    const words = { text: escapeLines(text), detail: detail === null ? null : escapeLines(detail) };
+    return [{ at: at.toISOString(), by, ...words }];
   });
 }
 

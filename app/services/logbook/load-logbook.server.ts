@@ -5,6 +5,7 @@ import { textCell } from "../../lib/export/csv.ts";
 import { describeEntry, type LogbookType, logbookEntrySchema } from "../../lib/logbook/entries.ts";
 import { type LogbookFilter, NO_FILTER, shownSince } from "../../lib/logbook/filter.ts";
 import { kindOf, LOGBOOK_KINDS, typesOf } from "../../lib/logbook/kinds.ts";
+import { escapeControls, escapeLines } from "../../lib/text/escape.ts";
 import type { LogbookRow } from "../../lib/views.ts";
 import { type Actor, accessEnsemble, accessTeam, type Grant } from "../auth/access.server.ts";
 
@@ -78,15 +79,16 @@ function whoOf(found: Found): Pick<LogbookRow, "who" | "by" | "from"> {
 
 function toRow(found: Found): LogbookRow {
   const read = logbookEntrySchema.safeParse({ type: found.type, data: found.data });
-  const words = read.success ? describeEntry(read.data) : { text: found.type, detail: null };
+  const { text, detail } = read.success ? describeEntry(read.data) : { text: found.type, detail: null };
   return {
     id: found.id,
     at: found.createdAt.toISOString(),
     ...whoOf(found),
     type: found.type,
     kind: kindOf(found.type),
-    ensemble: found.ensembleName,
-    ...words,
+    ensemble: found.ensembleName === null ? null : escapeControls(found.ensembleName),
+    text: escapeLines(text),
+    detail: detail === null ? null : escapeLines(detail),
   };
 }
 

@@ -25,6 +25,8 @@ const IMAGE = `"><img src=x onerror=alert(666)>`;
 const RUNS = "javascript:alert(666)";
 const TEMPLATE = "{{constructor}}$" + "{7*191}";
 const ESCAPE = "\u001b[31mred";
+/** Turns what follows from right to left. */
+const TURN = "\u202e";
 const ALL = [SCRIPT, IMAGE, RUNS, TEMPLATE].join(" ");
 
 /** What a browser or a terminal would act upon. */
@@ -34,6 +36,7 @@ const ACTS = [
   /(?:href|src|action|formaction|xlink:href)\s*=\s*["']?\s*javascript:/i,
   // biome-ignore lint/suspicious/noControlCharactersInRegex: these are what is looked for
   /[\u0000-\u0008\u000b\u000c\u000e-\u001f\u009b]/,
+  /[\u202a-\u202e\u2066-\u2069]/,
   /1337/, // the template, worked out
 ];
 const found = (text: string) => ACTS.filter((act) => act.test(text)).map(String);
@@ -51,11 +54,11 @@ beforeAll(async () => {
   const broken = frame(`${SCRIPT} energy=-1`, ["O 0 0 0", `H${IMAGE} 0.96 0 0`, "H -0.24 0.93 0"]);
   const content =
     frame(`name="${SCRIPT}" energy=-1.5 ${RUNS} note='${IMAGE}' ${ESCAPE} <b>=1`) +
-    frame(`name=${RUNS} energy=-1.25 note='${TEMPLATE}' <b>=2`, bent) +
+    frame(`name=${RUNS}${TURN} energy=-1.25 note='${TEMPLATE}' <b>=2`, bent) +
     broken;
   const taken = await takenIn(lab.token, [{ name: `${IMAGE}.xyz`, content }], {
     ...{ level: `L ${SCRIPT}`, energyUnit: "kcal/mol", energyFrom: "key:energy" },
-    ...{ name: `E ${ALL}`, series: `S ${ALL}` },
+    ...{ name: `E ${ALL}${TURN}`, series: `S ${ALL}${TURN}` },
   });
   const table = `frame,"P ${SCRIPT} [kcal/mol]","${TEMPLATE} ${RUNS} [D]"\n1,-2.5,0.1\n2,-2.0,0.2\n`;
   const added = await call(`/api/v1/ensembles/${taken.id}/columns`, {
@@ -70,6 +73,11 @@ beforeAll(async () => {
   await act(`/ensembles/${taken.id}/intake`, { intent: "hold", frame: "2", reason: ALL });
   await act(`/ensembles/${taken.id}/intake`, { intent: "release", frame: "2", reason: ALL });
   await act(`/teams/${lab.team.id}/tokens`, { name: ALL, scope: "read", days: "1" });
+  await act(`/teams/${lab.team.id}`, {
+    intent: "rename",
+    ensemble: taken.id,
+    name: `E ${ALL}${TURN}${TURN}`,
+  });
   await act("/account", { intent: "name", name: `N ${IMAGE}` });
   await act(`/teams/${lab.team.id}/people`, { intent: "invite", email: "guest@lab.example", role: "reader" });
   const at = { ensembleId: taken.id, siftId: sift.id };
@@ -94,7 +102,7 @@ const PAGES = [...new Set(rows.filter(({ file }) => file.endsWith(".tsx")).map(p
   (pattern) => /:(team|id|token)\b/.test(pattern) && pattern !== "/ensembles/:id",
 );
 
-describe("hostile text out of files and forms (B05)", () => {
+describe("hostile text out of files and forms (B05), and what steers a screen (row G13)", () => {
   it.each(PAGES)("is text on %s", async (pattern) => {
     const path = pattern
       .replace(":team", ids.team)
