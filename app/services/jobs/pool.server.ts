@@ -57,6 +57,9 @@ function pool(): Piscina {
       minThreads: 1,
       maxThreads: Math.max(threadCount(), matrixThreads()),
       idleTimeout: 60_000,
+      // The default stops a waiting thread's event loop, and with it the collector: it kept the coordinates of all its
+      // tasks. Measured with 50 MB a task: 200 MB after four, for good; this way 50, and none after 10 s.
+      atomics: "async",
     });
   }
   return state.pool;
