@@ -49,6 +49,7 @@ export async function freezeFirst(at: { ensembleId: string; siftId: string }, te
     contentVersion: 1,
     moment: [],
     outside: [],
+    searches: [],
   });
   const content = buildContent(source, null);
   const packed: PackedFile[] = [];

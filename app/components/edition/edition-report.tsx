@@ -20,6 +20,7 @@ import { Edition3D } from "./edition-3d";
 import { EditionDownloads } from "./edition-downloads";
 import { EditionHead } from "./edition-head";
 import { PopulationTable } from "./population-table";
+import { SearchesTable } from "./searches-table";
 import { Shapes } from "./shapes";
 import { StillPlots } from "./still-plots";
 import { TemperatureTable } from "./temperature-table";
@@ -138,6 +139,7 @@ function HowSure({ edition }: { edition: EditionView }) {
         </>
       ) : null}
       <FindingList findings={know} />
+      <SearchesTable edition={edition} />
       <Verified edition={edition} />
     </section>
   );

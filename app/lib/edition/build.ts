@@ -6,6 +6,7 @@ import { type OutsideMethod, outsideMethods } from "../outside/methods-text.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { SiftResult } from "../recipe/result.ts";
 import { distinctPopulations } from "../thermo/populations.ts";
+import type { SearchView } from "../trust/trust-view.ts";
 import { CONSTANTS_YEAR } from "../units.ts";
 import { joinWords } from "../workbench/findings.ts";
 import type { EditionContent, EditionPopulations, OpenItem } from "./content.ts";
@@ -15,6 +16,7 @@ import { editionFindings } from "./findings.ts";
 import { methodsText } from "./methods-text.ts";
 import { openItems } from "./open.ts";
 import { editionRows } from "./rows.ts";
+import { searchesSection, searchSentence } from "./searches.ts";
 import { averagesSection, comparisonSections, samplingSection } from "./sections.ts";
 import { editionSummary } from "./summary.ts";
 import {
@@ -55,6 +57,8 @@ export interface EditionSource {
   moment: readonly OpenItem[];
   /** Structures from outside that lie beside the ensemble. */
   outside: readonly OutsideMethod[];
+  /** Which frames each search brought; of one alone nothing is kept. */
+  searches: readonly SearchView[];
 }
 
 /** What is to be drawn for an edition; null where there are no populations or no error. */
@@ -118,6 +122,7 @@ export function buildContent(source: EditionSource, drawn: DrawnUncertainty | nu
     ),
     comparisons: comparisonSections(source.columns, source.recipe.levelName, populations),
     sampling: samplingSection(result.kept),
+    searches: searchesSection(result, source.searches),
     ...(source.outside.length > 0 ? { outside: [...source.outside] } : {}),
     uncertainty: uncertaintySection(drawn, source.sigmaFrom),
     temperatures: first
@@ -219,7 +224,15 @@ function methodsOf(facts: Omit<EditionContent, "words" | "findings" | "open">, v
 function furtherSentences(
   facts: Pick<
     EditionContent,
-    "averages" | "columns" | "comparisons" | "kept" | "level" | "uncertainty" | "temperatures" | "outside"
+    | "averages"
+    | "columns"
+    | "comparisons"
+    | "kept"
+    | "level"
+    | "uncertainty"
+    | "temperatures"
+    | "outside"
+    | "searches"
   >,
 ) {
   const { comparisons, level, uncertainty } = facts;
@@ -240,6 +253,7 @@ function furtherSentences(
         `${withUnit(formatEnergy(uncertainty.sigma), "kcal/mol")} each` +
         `${uncertainty.sigmaFrom === null ? "" : ` (the deviation from ${uncertainty.sigmaFrom})`}, ` +
         `in antithetic pairs (JCGM 101:2008; generator ${uncertainty.generator}, seed ${uncertainty.seed}).`,
+    searchSentence(facts),
     ...(facts.outside ?? []).map(outsideMethods),
   ].filter((sentence) => sentence !== null);
 }

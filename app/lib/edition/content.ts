@@ -137,6 +137,29 @@ const samplingSchema = z.object({
   atLeast: finite,
 });
 
+/** Several searches against each other: what each found of the distinct set, and what the first and the later ones share. */
+const searchesSchema = z.object({
+  each: z.array(
+    z.object({
+      name: z.string(),
+      /** Numbers of its frames, both ends included; the frames of it that the sift compared. */
+      ranges: z.array(z.tuple([z.number().int(), z.number().int()])),
+      frames: z.number().int(),
+      found: z.number().int(),
+      coverage: finite.nullable(),
+    }),
+  ),
+  /** Capture and recapture; null where either has no frame in the set. */
+  pair: z
+    .object({
+      first: z.number().int(),
+      second: z.number().int(),
+      both: z.number().int(),
+      estimate: finite,
+    })
+    .nullable(),
+});
+
 /** A sentence on what limits the results; "open" is for somebody to settle. */
 export const editionFindingSchema = z.object({
   kind: z.enum(["open", "know"]),
@@ -226,6 +249,8 @@ export const editionContentSchema = z.object({
   averages: z.array(averageSchema).nullable().default(null),
   comparisons: z.array(comparisonSchema).default([]),
   sampling: samplingSchema.nullable().default(null),
+  /** Absent where all frames are of one search. */
+  searches: searchesSchema.optional(),
   /** Absent where none lies beside the ensemble. */
   outside: z.array(outsideSchema).optional(),
   uncertainty: uncertaintySchema.nullable().default(null),

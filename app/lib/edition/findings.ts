@@ -150,9 +150,9 @@ function against({ level }: Facts) {
 }
 
 /** How complete the search is, in the sentence of Trust. */
-function sampling({ kept }: Facts): EditionFinding[] {
+function sampling({ kept, searches }: Facts): EditionFinding[] {
   const coverage = samplingCoverage(kept.map(({ found }) => found));
-  return samplingFindings({ coverage, searches: null }).map(({ title, reason }) => ({
+  return samplingFindings({ coverage, searches: searches?.pair ?? null }).map(({ title, reason }) => ({
     kind: "know",
     title,
     text: reason,

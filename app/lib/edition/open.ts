@@ -177,7 +177,7 @@ function trustInput(facts: Facts, result: Omit<SiftResult, "seconds">, recipe: S
         return [{ id: "", name: column.name, energies, populations }];
       }),
     coverage: samplingCoverage(kept.map(({ found }) => found)),
-    searches: null,
+    searches: facts.searches?.pair ?? null,
     hands: [],
     window: null,
     cut:

@@ -114,6 +114,8 @@ export interface EditionView {
   uncertainty: EditionContent["uncertainty"];
   /** In the order of `averages` and `rows`. */
   temperatures: EditionContent["temperatures"];
+  /** What each search found; null where all frames are of one. */
+  searches: NonNullable<EditionContent["searches"]> | null;
   /** What was open when it was frozen. */
   open: OpenItem[];
   rows: ConformerRow[];

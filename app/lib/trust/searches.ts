@@ -18,7 +18,10 @@ export interface SearchFound {
  *
  * @returns one entry a search, in their order
  */
-export function foundBySearch(result: SiftResult, searches: readonly SearchView[]): SearchFound[] {
+export function foundBySearch(
+  result: Pick<SiftResult, "kept" | "dropped">,
+  searches: readonly SearchView[],
+): SearchFound[] {
   const place = new Map(result.kept.map((conformer, k) => [conformer.frame, k]));
   const hits = [
     ...result.kept.map((conformer, k) => ({ frame: conformer.frame, place: k })),

@@ -5,6 +5,7 @@ import { DEFAULT_ERROR_KCAL } from "../../lib/averages/averages-state.ts";
 import { buildContent, type EditionSource } from "../../lib/edition/build.ts";
 import type { EditionContent } from "../../lib/edition/content.ts";
 import { deviationFrom } from "../../lib/edition/sections.ts";
+import { findSearches } from "../averages/load-trust.server.ts";
 import { outsideMethodsOf } from "../outside/outside-methods.server.ts";
 import { type FoundSift, readResult } from "../sifts/find-sift.server.ts";
 import { columnRows, contentColumn, describeForEdition, editionSources } from "./edition-source.server.ts";
@@ -94,6 +95,7 @@ export async function draftEdition(options: {
     temperatures: [],
     moment: await momentItems(sift),
     outside: await outsideMethodsOf(ensemble, sift, result),
+    searches: await findSearches(ensemble.id),
   };
   const against = heads.find(({ id }) => id === options.error.sigmaFrom);
   const taken = against ? deviationFrom(source.columns, sift.recipe.levelName, against.name) : null;

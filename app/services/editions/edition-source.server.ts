@@ -211,6 +211,7 @@ export async function editionSource(options: {
   contentVersion: 1 | 2;
   moment: readonly OpenItem[];
   outside: EditionSource["outside"];
+  searches: EditionSource["searches"];
 }): Promise<EditionSource> {
   const { ensemble, described, recipe, result, level, columns: all, frames: collected } = options;
   const own = level && all.find(({ kind, name }) => kind === "energy" && name === level.name);
@@ -246,6 +247,7 @@ export async function editionSource(options: {
     temperatures: recipe.temperatures,
     moment: options.moment,
     outside: options.outside,
+    searches: options.searches,
   };
 }
 

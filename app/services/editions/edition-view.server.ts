@@ -107,6 +107,7 @@ export async function toEditionView(
       populations: content.uncertainty.populations.slice(0, MOST_ROWS),
     },
     temperatures: temperaturesView(content),
+    searches: content.searches ?? null,
     open: content.open,
     rows: editionRows(content).slice(0, MOST_ROWS),
     conformers: content.kept.length,

@@ -24,6 +24,7 @@ import { shownRows } from "../../lib/edition/shown.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { TEMPERATURE_RANGE_K } from "../../lib/url-state.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
+import { findSearches } from "../averages/load-trust.server.ts";
 import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
 import { notFound } from "../http.server.ts";
 import { type Doer, writeEntry } from "../logbook/write-entry.server.ts";
@@ -194,6 +195,7 @@ async function prepare(at: At, request: FreezeRequest): Promise<Prepared> {
     contentVersion: 2,
     moment: await momentItems(sift),
     outside: await outsideMethodsOf(ensemble, sift, result),
+    searches: await findSearches(ensemble.id),
   });
   const content = await drawContent(source);
   const energies = frameEnergies(level, ensemble.frames, framesOf(result));

@@ -13,6 +13,7 @@ import {
 import { contentText } from "../../lib/edition/content-text.ts";
 import { editionFiles } from "../../lib/edition/edition-files.ts";
 import { MOMENT_CODES } from "../../lib/edition/open.ts";
+import { searchesOf } from "../../lib/edition/searches.ts";
 import { type FrameEnergy, readFrameEnergies } from "../../lib/edition/tables.ts";
 import type { SiftResult } from "../../lib/recipe/result.ts";
 import { ENERGY_UNITS, kcalPer } from "../../lib/units.ts";
@@ -332,6 +333,7 @@ async function recompute(frozen: Frozen, run: JobRun): Promise<VerifiedFile[]> {
     contentVersion: edition.content.version,
     // What lies beside an ensemble is no result: it stands as it was said then.
     outside: edition.content.outside ?? [],
+    searches: searchesOf(edition.content),
     moment: edition.content.open.filter(({ code }) => MOMENT_CODES.some((one) => one === code)),
   });
   const content = settleWords(await drawContent(source), edition.content);
