@@ -76,6 +76,18 @@ test("a table is looked at, its questions answered, then kept", async ({ page })
   await add.click();
   await expect(rows(page).filter({ hasText: "PM7" })).toContainText("the table six.csv");
   await expect(rows(page).filter({ hasText: /^rg/ })).toContainText("nm");
+
+  // A level becomes a property, and one that is weighed with again.
+  await page.getByRole("button", { name: "Change PM7" }).click();
+  await page.getByRole("button", { name: "Make it a property" }).click();
+  await expect(rows(page).filter({ hasText: "PM7" })).toContainText("property, linear");
+  await page.getByRole("button", { name: "Use PM7 as a level" }).click();
+  await expect(page.getByRole("dialog")).toContainText("6 accepted frames with a value");
+  await expect(page.getByLabel("Unit of the numbers")).toHaveValue("kcal/mol");
+  await expect(page.getByLabel("Unit of the numbers")).toContainText("kcal/mol, a spread of 2.90 kcal/mol");
+  await page.getByRole("dialog").getByRole("button", { name: "Use as a level" }).click();
+  await expect(rows(page).filter({ hasText: "PM7" })).toContainText("electronic");
+  await expect(page.getByRole("dialog")).toHaveCount(0);
 });
 
 test("a second structure file in another order becomes a level, and a formula another", async ({ page }) => {

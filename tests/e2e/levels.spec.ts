@@ -189,6 +189,14 @@ test.describe("levels", () => {
     await expect(page.getByLabel("Plan", { exact: true })).toContainText("Spring, version 1");
     await page.reload();
     await expect(page.getByLabel("Plan", { exact: true })).toContainText("Spring, version 1");
+    await hydrated(page);
+    await page.getByRole("button", { name: "Remove plan" }).click();
+    await page.getByRole("button", { name: "Remove the plan" }).click();
+    await expect(page.getByText("Removed within thirty days")).toBeVisible();
+    await expect(page.getByLabel("Plan", { exact: true })).toHaveCount(0);
+    await page.getByRole("button", { name: "Undo" }).click();
+    await expect(page.getByLabel("Plan", { exact: true })).toContainText("Spring, version 1");
+    await expect(page.getByText("Removed within thirty days")).toHaveCount(0);
     await page.goto(`/ensembles/${id}/logbook`);
     await expect(page.getByText("Saved the plan Spring")).toBeVisible();
   });

@@ -21,16 +21,22 @@ import {
   withUnit,
 } from "~/lib/format";
 import type { PooledWindow } from "~/lib/levels/pooled";
+import { TEMPERATURE_RANGE_K } from "~/lib/url-state";
 import { shareWords } from "~/lib/workbench/findings";
 import { toCsv } from "~/lib/workbench/tsv";
 import type { SeriesLevels } from "~/services/levels/load-series-levels.server";
 import { PAGE_SEED } from "./page-seed";
+
+/** Numbers of the settings, as the address names them. */
+export type WindowSetting = "keep" | "for" | "T";
 
 export interface WindowsPageData {
   team: { id: string; name: string };
   series: { id: string; name: string }[];
   chosen: { id: string; name: string } | null;
   settings: { share: number; ofMolecules: number; temperatureK: number };
+  /** What was typed and is no such number: the default counts instead. */
+  refused: Partial<Record<WindowSetting, string>>;
   found: SeriesLevels;
   pooled: PooledWindow | null;
 }
@@ -54,7 +60,9 @@ export function WindowsPage(data: WindowsPageData) {
         <Finding>
           {found.names.length < 2
             ? `No two levels of theory in ${what} yet. Add a second level to its ensembles, under the same name in each.`
-            : `No sifted ensemble of ${what} has energies at both ${found.level} and ${found.reference}.`}
+            : found.level === found.reference
+              ? "A level is not compared with itself: choose another as the reference."
+              : `No sifted ensemble of ${what} has energies at both ${found.level} and ${found.reference}.`}
         </Finding>
       )}
       <Settings {...data} />
@@ -81,14 +89,14 @@ function moreWords({ found, settings }: WindowsPageData, pooled: PooledWindow): 
       ? ` All of them need ${withUnit(formatEnergy(widest), "kcal/mol")}.`
       : "";
   const few =
-    pooled.molecules < 10
+    pooled.molecules > 1 && pooled.molecules < 10
       ? ` With ${plural(pooled.molecules, "molecule")}, ${formatPercent(settings.ofMolecules)} of them means ${formatCount(pooled.reached)}.`
       : "";
   return `At ${withUnit(formatTemperature(settings.temperatureK), "K")}, over the distinct sets with energies at ${found.level} and ${found.reference}.${all}${few}`;
 }
 
 /** A plain form: it works without script, and sends itself where there is one. */
-function Settings({ team, series, chosen, settings, found }: WindowsPageData) {
+function Settings({ team, series, chosen, settings, refused, found }: WindowsPageData) {
   const submit = useSubmit();
   const names = found.names.map(({ name, ensembles }) => ({
     value: name,
@@ -96,9 +104,9 @@ function Settings({ team, series, chosen, settings, found }: WindowsPageData) {
   }));
   return (
     <Form
-      key={JSON.stringify([chosen?.id, found.level, found.reference, settings])}
+      key={JSON.stringify([chosen?.id, found.level, found.reference, settings, refused])}
       method="get"
-      className="mt-6 grid grid-cols-2 items-end gap-x-6 gap-y-4 border-y border-rule py-4 lg:grid-cols-7 print:hidden"
+      className="mt-6 grid grid-cols-2 items-end gap-x-6 gap-y-4 border-y border-rule py-4 lg:grid-cols-4 xl:grid-cols-7 print:hidden"
       onChange={(event) => {
         if (event.target instanceof HTMLSelectElement)
           void submit(event.currentTarget, { preventScrollReset: true });
@@ -120,21 +128,28 @@ function Settings({ team, series, chosen, settings, found }: WindowsPageData) {
         label="Keep, %"
         name="keep"
         inputMode="decimal"
-        defaultValue={trimmed(100 * settings.share, 2)}
+        defaultValue={refused.keep ?? trimmed(100 * settings.share, 2)}
+        error={refused.keep === undefined ? undefined : "From 1 to 100 %. Shown: 95 %."}
         autoComplete="off"
       />
       <TextField
         label="Of the molecules, %"
         name="for"
         inputMode="decimal"
-        defaultValue={trimmed(100 * settings.ofMolecules, 2)}
+        defaultValue={refused.for ?? trimmed(100 * settings.ofMolecules, 2)}
+        error={refused.for === undefined ? undefined : "From 1 to 100 %. Shown: 90 %."}
         autoComplete="off"
       />
       <TextField
         label="Temperature, K"
         name="T"
         inputMode="decimal"
-        defaultValue={formatTemperature(settings.temperatureK)}
+        defaultValue={refused.T ?? formatTemperature(settings.temperatureK)}
+        error={
+          refused.T === undefined
+            ? undefined
+            : `From ${TEMPERATURE_RANGE_K[0]} to ${formatCount(TEMPERATURE_RANGE_K[1])} K. Shown: 298.15 K.`
+        }
         autoComplete="off"
       />
       <Button type="submit">Find the window</Button>
@@ -192,9 +207,7 @@ function Molecules({ data, pooled }: { data: WindowsPageData; pooled: PooledWind
           {rows.map(({ molecule, each }) => (
             <Tr key={molecule.ensembleId}>
               <Td wrap>
-                <TextLink to={href("/ensembles/:id/levels", { id: molecule.ensembleId })}>
-                  {molecule.name}
-                </TextLink>
+                <TextLink to={comparisonOf(molecule, settings)}>{molecule.name}</TextLink>
                 {each.kcal > pooled.kcal ? (
                   <span className="block text-xs text-mark">not served by this window</span>
                 ) : null}
@@ -220,6 +233,20 @@ function Molecules({ data, pooled }: { data: WindowsPageData; pooled: PooledWind
       </p>
     </section>
   );
+}
+
+/** The comparison of the same two levels in the section of the ensemble, with the same share and temperature. */
+function comparisonOf(
+  { ensembleId, ids }: SeriesLevels["molecules"][number],
+  { share, temperatureK }: WindowsPageData["settings"],
+) {
+  const search = new URLSearchParams({
+    T: String(temperatureK),
+    level: ids.level,
+    ref: ids.reference,
+    keep: trimmed(100 * share, 9),
+  });
+  return { pathname: href("/ensembles/:id/levels", { id: ensembleId }), search: `?${search}` };
 }
 
 function Left({ data }: { data: WindowsPageData }) {

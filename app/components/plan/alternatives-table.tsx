@@ -1,6 +1,7 @@
 import { Download, Plus, X } from "lucide-react";
 import { useRef } from "react";
 import { saveText } from "~/components/charts/export-figure";
+import { ScrollBox } from "~/components/columns/scroll-box";
 import { Button, IconButton } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th } from "~/components/ui/table";
@@ -118,8 +119,7 @@ export function AlternativesTable({
           </Button>
         )}
       </BlockHead>
-      {/* Positioned: words for screen readers alone would else widen the page. */}
-      <div className="relative overflow-x-auto">
+      <ScrollBox label="Plans side by side" className="relative">
         <Table aria-labelledby="plan-alternatives">
           <thead>
             <tr>
@@ -130,9 +130,9 @@ export function AlternativesTable({
                 <Th
                   key={k}
                   align="right"
-                  className={k === chosen ? "border-t-3! border-t-mark! bg-mark-wash text-ink!" : ""}
+                  className={`max-sm:px-1 ${k === chosen ? "border-t-3! border-t-mark! bg-mark-wash text-ink!" : ""}`}
                 >
-                  <span className="inline-flex items-center gap-1">
+                  <span className="inline-flex items-center gap-1 max-sm:flex-col max-sm:items-end">
                     {name}
                     {readOnly || plans.length === 1 ? null : (
                       <IconButton label={`Leave out ${name}`} onClick={() => remove(k)}>
@@ -159,11 +159,16 @@ export function AlternativesTable({
           <tbody>
             {rows.map(({ label, unit, cell }) => (
               <tr key={label} className="border-b border-rule">
-                <Td wrap>
+                <Td wrap className="max-sm:px-1">
                   {label} <span className="text-ink-3">{unit}</span>
                 </Td>
                 {plans.map((_, k) => (
-                  <Td key={k} align="right" className={k === chosen ? "bg-mark-wash" : ""}>
+                  <Td
+                    key={k}
+                    align="right"
+                    wrap
+                    className={`max-sm:px-1 sm:whitespace-nowrap ${k === chosen ? "bg-mark-wash" : ""}`}
+                  >
                     {cell(k)}
                   </Td>
                 ))}
@@ -171,7 +176,7 @@ export function AlternativesTable({
             ))}
           </tbody>
         </Table>
-      </div>
+      </ScrollBox>
     </section>
   );
 }

@@ -1,8 +1,10 @@
 import type { ShellHandle } from "~/components/layout/breadcrumbs";
-import { WindowsPage, type WindowsPageData } from "~/components/levels/windows-page";
+import { type WindowSetting, WindowsPage, type WindowsPageData } from "~/components/levels/windows-page";
 import { actorContext, requestIdContext } from "~/context";
+import { readTyped } from "~/lib/format";
 import { pooledWindow } from "~/lib/levels/pooled";
 import { STANDARD_TEMPERATURE_K } from "~/lib/units";
+import { TEMPERATURE_RANGE_K } from "~/lib/url-state";
 import { listSeries } from "~/services/ensembles/list-series.server";
 import { forPage, notFound } from "~/services/http.server";
 import { loadSeriesLevels } from "~/services/levels/load-series-levels.server";
@@ -15,25 +17,29 @@ export function meta({ loaderData }: Route.MetaArgs) {
 
 export const handle: ShellHandle<WindowsPageData> = { crumbs: () => [{ label: "Windows" }] };
 
-/** A number of the address within bounds; what is none is the default. */
+/** A number of the address within bounds; for what is none the default counts, and the page says so at the field. */
 function numberOf(
   params: URLSearchParams,
-  key: string,
-  least: number,
-  most: number,
+  key: WindowSetting,
+  [least, most]: readonly [number, number],
   fallback: number,
+  refused: WindowsPageData["refused"],
 ): number {
-  const text = params.get(key) ?? "";
-  const value = /^\d{1,6}(\.\d{1,9})?$/.test(text) ? Number(text) : Number.NaN;
-  return value >= least && value <= most ? value : fallback;
+  const text = (params.get(key) ?? "").trim();
+  if (text === "") return fallback;
+  const value = readTyped(text, key === "T" ? "K" : "%");
+  if (value !== null && value >= least && value <= most) return value;
+  refused[key] = text.slice(0, 40);
+  return fallback;
 }
 
 export async function loader({ params, context, url }: Route.LoaderArgs): Promise<WindowsPageData> {
   const actor = context.get(actorContext);
   const asked = url.searchParams;
-  const temperatureK = numberOf(asked, "T", 100, 1000, STANDARD_TEMPERATURE_K);
-  const share = numberOf(asked, "keep", 1, 100, 95) / 100;
-  const ofMolecules = numberOf(asked, "for", 1, 100, 90) / 100;
+  const refused: WindowsPageData["refused"] = {};
+  const temperatureK = numberOf(asked, "T", TEMPERATURE_RANGE_K, STANDARD_TEMPERATURE_K, refused);
+  const share = numberOf(asked, "keep", [1, 100], 95, refused) / 100;
+  const ofMolecules = numberOf(asked, "for", [1, 100], 90, refused) / 100;
   return forPage(context.get(requestIdContext), async () => {
     const teamId = params.team;
     const seriesId = asked.get("series") || undefined;
@@ -56,6 +62,7 @@ export async function loader({ params, context, url }: Route.LoaderArgs): Promis
       series: series.map(({ id, name }) => ({ id, name })),
       chosen: chosen && { id: chosen.id, name: chosen.name },
       settings,
+      refused,
       found,
       pooled: found.molecules.length === 0 ? null : pooledWindow(found.molecules, settings),
     };

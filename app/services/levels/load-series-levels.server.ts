@@ -14,6 +14,8 @@ const MOST_MOLECULES = 200;
 export interface SeriesMolecule {
   ensembleId: string;
   name: string;
+  /** Ids of the two levels in this ensemble. */
+  ids: { level: string; reference: string };
   /** Conformers of its distinct set that have both energies: kcal/mol, any zero. */
   level: number[];
   reference: number[];
@@ -21,7 +23,7 @@ export interface SeriesMolecule {
 }
 
 export interface SeriesLevels {
-  /** Names of levels that two ensembles or more share, by how many have them. */
+  /** Names of levels, those that most ensembles have first. */
   names: { name: string; ensembles: number }[];
   level: string | null;
   reference: string | null;
@@ -109,7 +111,9 @@ async function loadMolecule(
   if (!a || !b) return null;
   const kind = levels.find(({ name }) => name === reference)?.energyKind ?? "electronic";
   const weights = chooseWeights(result.kept, kind).values;
-  const molecule = { level: [] as number[], reference: [] as number[], weights: [] as number[] };
+  const idOf = (name: string) => levels.find((one) => one.name === name)?.id ?? "";
+  const ids = { level: idOf(level), reference: idOf(reference) };
+  const molecule = { ids, level: [] as number[], reference: [] as number[], weights: [] as number[] };
   for (const [k, { frame }] of result.kept.entries()) {
     const [x, y] = [a(frame), b(frame)];
     if (x === null || y === null) continue;
