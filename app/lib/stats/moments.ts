@@ -54,5 +54,11 @@ export function rootMeanSquare(values: ArrayLike<number>): number {
 export function sampleSd(values: ArrayLike<number>): number | null {
   if (values.length < 2) return null;
   const centre = mean(values);
-  return Math.sqrt(sum(Float64Array.from(values, (v) => (v - centre) ** 2)) / (values.length - 1));
+  // Filled by hand: draws ask for this of thousands of lists, and `from` with a function takes ten times as long.
+  const squares = new Float64Array(values.length);
+  for (let i = 0; i < values.length; i++) {
+    const off = values[i]! - centre;
+    squares[i] = off * off;
+  }
+  return Math.sqrt(sum(squares) / (values.length - 1));
 }

@@ -1,5 +1,5 @@
 import { mean, sampleSd } from "../stats/moments.ts";
-import { quantileOfSorted } from "../stats/quantile.ts";
+import { quantilesInPlace } from "../stats/quantile.ts";
 import { GENERATOR_NAME } from "../stats/random.ts";
 import { DRAWS, type DrawInput, forEachDraw } from "./energy-draws.ts";
 
@@ -54,17 +54,13 @@ export function drawFigures(
 
 /** Summary of one figure over draws whose neighbours 2k, 2k + 1 are antithetic; sorts no list of the caller's. */
 export function summariseDraws(values: Float64Array | Float32Array): DrawnFigure {
-  const pairs = Float64Array.from(
-    { length: values.length / 2 },
-    (_, k) => (values[2 * k]! + values[2 * k + 1]!) / 2,
-  );
-  const sorted = values.slice().sort();
+  const pairs = new Float64Array(values.length / 2);
+  for (let k = 0; k < pairs.length; k++) pairs[k] = (values[2 * k]! + values[2 * k + 1]!) / 2;
+  const [low = 0, median = 0, high = 0] = quantilesInPlace(values.slice(), [0.025, 0.5, 0.975]);
   return {
     mean: mean(values),
     sd: sampleSd(values) ?? 0,
-    low: quantileOfSorted(sorted, 0.025),
-    median: quantileOfSorted(sorted, 0.5),
-    high: quantileOfSorted(sorted, 0.975),
+    ...{ low, median, high },
     meanError: (sampleSd(pairs) ?? 0) / Math.sqrt(pairs.length),
   };
 }
