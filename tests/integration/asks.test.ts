@@ -3,7 +3,7 @@ import { beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { ensembles, frameBlocks, frames, logbook } from "~/db/schema.server";
 import type { EnsembleAnswer } from "~/lib/api/schemas";
-import { record } from "../factories/mol";
+import { record, WATER } from "../factories/mol";
 import { BUTANE, formOf, frame, makeLab, post, takenIn } from "../factories/upload";
 import { call } from "../setup/app";
 
@@ -176,6 +176,33 @@ describe("X22, energies with a decimal comma beside coordinates with points", ()
     expect(taken.intake).toMatchObject({ accepted: 3, held: 0, questions: [] });
     expect(taken.levels).toMatchObject([{ count: 2, missing: 1 }]);
     expect(taken.intake.messages.find(({ code }) => code === "E10")).toMatchObject({ found: "-15,775161" });
+  });
+});
+
+describe("X22, data fields of an SDF with a decimal comma", () => {
+  const waters = (name: string, first: string, second: string) =>
+    [first, second]
+      .map((text, k) => {
+        const atoms = WATER.map(({ at: [x, y, z], symbol }) => ({ symbol, at: [x + k, y, z] as const }));
+        return record(`w${k}`, { atoms, data: `> <${name}>\n${text}\n\n` });
+      })
+      .join("");
+
+  it.each([
+    ["MMFF94_ENERGY", { level: "A", energyUnit: "kcal/mol" }, "-12,5", "-12,3"],
+    ["dG (kJ/mol)", { level: "A", energyUnit: "kJ/mol" }, "-12,6", "-12,4"],
+    ["score", { level: "A", energyUnit: "kcal/mol", energyFrom: "field:score" }, "-12,7 kcal/mol", "-12,5"],
+  ])("%s: are asked about, and read as points once that is confirmed", async (name, given, first, second) => {
+    const taken = await takenIn(token, [{ name: "comma.sdf", content: waters(name, first, second) }], given);
+    expect(taken.intake).toMatchObject({ frames: 2, accepted: 0, held: 2 });
+    const [number = ""] = first.split(" ");
+    expect(question(taken, "decimal-comma")?.options.map(({ id, values }) => [id, values?.[0]])).toEqual([
+      ["comma", number.replace(",", ".")],
+      ["hold", number],
+    ]);
+    const intake = await answer(taken.id, { "decimal-comma": "comma" });
+    expect(intake).toMatchObject({ accepted: 2, held: 0, questions: [] });
+    expect((await ensemble(taken.id)).levels).toMatchObject([{ name: "A", count: 2, missing: 0 }]);
   });
 });
 

@@ -335,6 +335,39 @@ describe("a second structure file", () => {
     expect(said.map((m: { frame?: number }) => m.frame)).toEqual([2, 4, undefined]);
   });
 
+  it("asks about decimal commas of energies and coordinates, and reads them once that is answered", async () => {
+    const { id } = await ensemble(3);
+    const commas = [0, 1].map((k) => frame(`energy=-1${k},25`, butane(k * 3)));
+    const stated = { level: "comma", energyUnit: "kJ/mol" };
+    const energies = { name: "commas.xyz", content: commas.join("") };
+    const open = await add(id, energies, stated);
+    expect([open.status, open.body.code, open.body.errors[0].field]).toEqual([422, "X22", "numbers"]);
+    expect(open.body.detail).toContain('such as "-10,25"');
+    const kept = await add(id, energies, { ...stated, numbers: "comma" });
+    expect(kept.status).toBe(201);
+    expect(kept.body.columns).toMatchObject([{ name: "comma", kind: "energy", count: 2, missing: 1 }]);
+    const point = await add(id, energies, { ...stated, level: "point", numbers: "point" });
+    expect([point.status, point.body.code]).toEqual([422, "E10"]);
+
+    const coordinates = { name: "places.xyz", content: commas.join("").replaceAll(".", ",") };
+    const asked = await add(id, coordinates, { ...stated, level: "places" });
+    expect([asked.status, asked.body.errors[0].field]).toEqual([422, "numbers"]);
+    const places = await add(id, coordinates, { ...stated, level: "places", numbers: "comma" });
+    expect(places.body.columns).toMatchObject([{ name: "places", count: 2 }]);
+
+    // One among others is a slip: its frame has no value.
+    const lone = { name: "lone.xyz", content: [frame("energy=-9.5", butane(6)), ...commas].join("") };
+    const slip = await add(
+      id,
+      { ...lone, content: lone.content.replace("-11,25", "-11.25") },
+      {
+        ...stated,
+        level: "slip",
+      },
+    );
+    expect(slip.body.columns).toMatchObject([{ name: "slip", count: 2, missing: 1 }]);
+  });
+
   it("by number or label goes without structures", async () => {
     const { id } = await ensemble(3);
     const far = [15, 16, 17].map((k, n) => frame(`name=conf_${3 - n} energy=${n}.5`, butane(k * 3))).join("");

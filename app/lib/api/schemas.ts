@@ -361,7 +361,8 @@ export const columnFieldsSchema = z
     }),
     delimiter: z.enum(["comma", "semicolon", "tab", "bar"]).optional(),
     numbers: z.enum(["point", "comma", "point-thousands", "comma-thousands"]).optional().meta({
-      description: "How a table writes numbers: 1.5, 1,5, 1,234.5 or 1.234,5.",
+      description:
+        "How a table writes numbers: 1.5, 1,5, 1,234.5 or 1.234,5; of a structure file: point or comma.",
     }),
     header: z.enum(["first", "none"]).optional(),
     key: z.enum(["frame", "label"]).optional().meta({ description: "What the first column holds." }),

@@ -59,14 +59,14 @@ export function energiesAsWritten(fields: SdfFields): string | null {
   return written.length === 0 ? null : written.join("\n");
 }
 
-/** The value; of a tag that stands twice with different values both. */
-function oneText(values: readonly string[]): string {
+/** The value of a field; of a tag that stands twice with different values both. */
+export function oneText(values: readonly string[]): string {
   const [first = "", ...more] = values.map((value) => value.trim());
   return more.every((value) => value === first) ? first : [first, ...more].join(" | ");
 }
 
-/** A number with nothing but a few words behind it, of which the first may be its unit. */
-function readFieldNumber(
+/** A number with nothing but a few words behind it, of which the first may be its unit; null for any other value. */
+export function readFieldNumber(
   written: string,
 ): (Pick<CommentNumber, "text" | "unit" | "next"> & { value: number }) | null {
   if (written.length > KEPT) return null;

@@ -131,6 +131,26 @@ const FIELD_OF: Record<string, string> = {
   level: "level",
 };
 
+/** Row X22, under the field that also says how a table writes numbers. */
+function commaQuestion({ of, frames, example }: NonNullable<ReadStructures["commas"]>): IntakeQuestion {
+  const what = of === "coordinates" ? "Coordinates" : "Numbers";
+  const otherwise = of === "coordinates" ? "these frames are left out" : "these frames have no value";
+  return {
+    id: "numbers",
+    code: "X22",
+    text: "Is the comma a decimal comma?",
+    reason: `${what} of ${plural(frames, "frame")} are written with a comma, such as "${quoteFound(example)}". Nothing is guessed.`,
+    options: [
+      { id: "comma", text: "Decimal comma: 1234,5", proposed: true },
+      {
+        id: "point",
+        text: "Decimal point: 1234.5",
+        detail: `"${quoteFound(example)}" then is text: ${otherwise}.`,
+      },
+    ],
+  };
+}
+
 /** Columns over the frames of the file: its energies, or with `kind=property` its further numbers. */
 async function settle(
   name: string,
@@ -138,6 +158,10 @@ async function settle(
   target: TargetEnsemble,
   fields: ColumnFields,
 ): Promise<Settled> {
+  // Asked by itself: what else is open hangs on how the numbers read.
+  if (read.commas) {
+    return { columns: [], leftOut: [], questions: [commaQuestion(read.commas)], messages: [] };
+  }
   const findings = read.scan.finish();
   const answers = answersOf(fields);
   const asked = fields.preview === true;
@@ -267,8 +291,7 @@ export async function planStructureFile(
   fields: ColumnFields,
 ): Promise<FilePlan> {
   const rule = await ruleOf(target, fields.sift);
-  const from = fields.kind === "property" ? null : (fields.energyFrom ?? null);
-  const read = await readStructures(name, format, bytes, target, from);
+  const read = await readStructures(name, format, bytes, target, fields);
   if (read.numbers.length === 0) {
     const [first] = read.messages.filter(({ severity }) => severity === "hold");
     throw new DomainError(

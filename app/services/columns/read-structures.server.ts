@@ -1,14 +1,19 @@
 import { setImmediate as breathe } from "node:timers/promises";
 import { env } from "../../env.server.ts";
+import type { ColumnFields } from "../../lib/api/schemas.ts";
+import type { NumberStyle } from "../../lib/csv/cells.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { formatBytes } from "../../lib/format.ts";
 import { FrameClassifier } from "../../lib/intake/classify.ts";
+import { commaEnergy, commaField, fieldsWithPoints } from "../../lib/intake/comma-energy.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
+import { namesEnergy } from "../../lib/intake/energy-words.ts";
 import { isExtended } from "../../lib/intake/extended-comment.ts";
 import { energiesAsWritten } from "../../lib/intake/field-energies.ts";
 import type { MoleculeGroup } from "../../lib/intake/frame-record.ts";
+import { AS_PROPOSED, withDecimalPoints } from "../../lib/intake/reading-choices.ts";
 import type { IntakeMessage } from "../../lib/intake/report.ts";
-import { isSdfFrame } from "../../lib/sdf/frame.ts";
+import { isSdfFrame, type SdfFrame } from "../../lib/sdf/frame.ts";
 import { SdfReader } from "../../lib/sdf.server.ts";
 import type { XyzFrame } from "../../lib/xyz/frame.ts";
 import { XyzReader } from "../../lib/xyz.server.ts";
@@ -32,6 +37,8 @@ export interface ReadStructures {
   scan: EnergyScan;
   extended: boolean;
   firstComment: string;
+  /** Numbers with a comma, as nobody has said yet how numbers are written (row X22); null where there is nothing to ask. */
+  commas: { of: "coordinates" | "energies"; frames: number; example: string } | null;
   /** Why other frames cannot be matched, and what the reader remarks. */
   messages: IntakeMessage[];
 }
@@ -60,11 +67,16 @@ class Gathering {
   private extendedCount = 0;
   private firstComment = "";
   readonly messages: IntakeMessage[] = [];
+  private readonly commas = { coordinates: [] as string[], energies: [] as string[] };
 
   constructor(
     private readonly file: string,
     target: TargetEnsemble,
     energyFrom: string | null,
+    /** How numbers are written, where somebody said so. */
+    private readonly style: NumberStyle | null,
+    /** Names of the numbers that are wanted, where they may have commas. */
+    private readonly wanted: (name: string) => boolean,
   ) {
     this.classifier = new FrameClassifier({ group: groupOf(target), map: true });
     this.scan = new EnergyScan({
@@ -101,10 +113,35 @@ class Gathering {
       if (this.bytes > MOST_BYTES) throw tooMuch(this.file);
       this.kept.push({ number, label, line, positions });
     }
-    this.scan.add({ number, file: frame.file, line }, comment, sdf?.fields);
+    const pointed = frame.decimalCommas || this.style === "comma";
+    if (pointed) {
+      this.scan.add(
+        { number, file: frame.file, line },
+        withDecimalPoints(comment),
+        sdf ? fieldsWithPoints(sdf.fields) : undefined,
+      );
+    } else this.scan.add({ number, file: frame.file, line }, comment, sdf?.fields);
+    if (this.style === null) this.noteCommas(frame, sdf);
     if (this.sound === 0) this.firstComment = comment;
     this.sound += 1;
     if (sdf ? sdf.fields.size > 0 : isExtended(comment)) this.extendedCount += 1;
+  }
+
+  private noteCommas(frame: XyzFrame, sdf: SdfFrame | null): void {
+    const open = frame.open?.find(({ ask }) => ask === "decimal-comma");
+    if (open) return void this.commas.coordinates.push(open.shown.hold ?? "");
+    const text = sdf ? commaField(sdf.fields, this.wanted) : commaEnergy(frame.comment, this.wanted);
+    if (text !== null) this.commas.energies.push(text);
+  }
+
+  /** Coordinates leave it open in any frame; energies where most have a comma: one among others is a slip (row E10). */
+  private openCommas(): ReadStructures["commas"] {
+    const { coordinates, energies } = this.commas;
+    if (coordinates.length > 0) {
+      return { of: "coordinates", frames: coordinates.length, example: coordinates[0] ?? "" };
+    }
+    if (energies.length * 2 <= this.sound) return null;
+    return { of: "energies", frames: energies.length, example: energies[0] ?? "" };
   }
 
   end(): ReadStructures {
@@ -128,6 +165,7 @@ class Gathering {
       scan: this.scan,
       extended: this.extendedCount * 2 > this.sound,
       firstComment: this.firstComment,
+      commas: this.openCommas(),
       messages: this.messages,
     };
   }
@@ -149,16 +187,24 @@ export async function readStructures(
   format: "xyz" | "sdf" | "unknown",
   bytes: AsyncIterable<Uint8Array>,
   target: TargetEnsemble,
-  energyFrom: string | null,
+  fields: Pick<ColumnFields, "energyFrom" | "kind" | "numbers">,
 ): Promise<ReadStructures> {
   const settings = env();
+  const properties = fields.kind === "property";
+  const from = properties ? null : (fields.energyFrom ?? null);
+  const style = fields.numbers ?? null;
+  // Read as proposed while nobody has said it, so that the question can be asked beside what is found.
+  const decimals = style === null ? AS_PROPOSED : style === "comma" ? "comma" : undefined;
   const Reader = format === "sdf" ? SdfReader : XyzReader;
   const reader = new Reader({
     file: name,
     firstNumber: 1,
     limits: { frames: settings.MAX_FRAMES, atoms: settings.MAX_ATOMS },
+    choices: decimals === undefined ? {} : { "decimal-comma": decimals },
   });
-  const gathering = new Gathering(name, target, energyFrom);
+  const gathering = new Gathering(name, target, from, style, (key) =>
+    properties ? true : namesEnergy(key) || from === `key:${key}` || from === `field:${key}`,
+  );
   let breath = performance.now();
   for await (const chunk of bytes) {
     for (let at = 0; at < chunk.length; at += PIECE_BYTES) {

@@ -1,7 +1,7 @@
 import { and, asc, eq, isNotNull, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { frames } from "../../db/schema.server.ts";
-import { commaEnergy } from "../../lib/intake/comma-energy.ts";
+import { commaEnergy, commaField, fieldsWithPoints } from "../../lib/intake/comma-energy.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
 import { withDecimalPoints } from "../../lib/intake/reading-choices.ts";
 import type { NumberView } from "../../lib/views.ts";
@@ -27,8 +27,10 @@ export async function numbersOfFiles(ensembleId: string): Promise<NumberView[]> 
     .limit(LOOKED_AT);
   const scan = new EnergyScan();
   for (const { comment, fields, number, line } of rows) {
+    const own = fields === null ? undefined : unpackFields(fields);
     const numbers = commaEnergy(comment) === null ? comment : withDecimalPoints(comment);
-    scan.add({ number, line, file: "" }, numbers, fields === null ? undefined : unpackFields(fields));
+    const commas = own !== undefined && commaField(own) !== null;
+    scan.add({ number, line, file: "" }, numbers, commas ? fieldsWithPoints(own) : own);
   }
   return scan
     .finish()

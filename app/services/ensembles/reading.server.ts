@@ -7,8 +7,9 @@ import { env } from "../../env.server.ts";
 import { DomainError, type Fault } from "../../lib/errors.ts";
 import { formatBytes, formatCount } from "../../lib/format.ts";
 import { type Classification, FrameClassifier } from "../../lib/intake/classify.ts";
-import { commaEnergy } from "../../lib/intake/comma-energy.ts";
+import { commaEnergy, commaField } from "../../lib/intake/comma-energy.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
+import { namesEnergy } from "../../lib/intake/energy-words.ts";
 import { isExtended } from "../../lib/intake/extended-comment.ts";
 import { energiesAsWritten } from "../../lib/intake/field-energies.ts";
 import { formatMessage } from "../../lib/intake/format-message.ts";
@@ -32,7 +33,7 @@ import {
 } from "../../lib/intake/reading-questions.ts";
 import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../../lib/intake/report.ts";
-import { isSdfFrame } from "../../lib/sdf/frame.ts";
+import { isSdfFrame, type SdfFrame } from "../../lib/sdf/frame.ts";
 import { SDF_READER_VERSION, SdfReader } from "../../lib/sdf.server.ts";
 import { quoteFound } from "../../lib/text/escape.ts";
 import { sniff } from "../../lib/text/sniff.ts";
@@ -417,10 +418,18 @@ export class Reading {
       this.labels.set(shape, [...frame.labels]);
     const note = frame.remarks[0]?.message ?? null;
     const state = note === null ? "accepted" : "remarked";
-    const comma = sdf || frame.decimalCommas ? null : commaEnergy(comment);
-    if (comma !== null) this.commaEnergies.set(number, { text: comma, line: line + 1, state });
+    const comma = frame.decimalCommas ? null : this.commaOf(comment, sdf);
+    if (comma !== null) this.commaEnergies.set(number, { text: comma, line: sdf ? line : line + 1, state });
     this.askOf(frame, mapping, state);
     await this.rows.add({ ...row, shape, indexInShape, mapping, state, holdReason: null, note });
+  }
+
+  /** The energy of a frame as it is written, where that has a comma: what was named as the energy counts as one. */
+  private commaOf(comment: string, sdf: SdfFrame | null): string | null {
+    const named = this.options.energyFrom;
+    return sdf
+      ? commaField(sdf.fields, (name) => namesEnergy(name) || named === `field:${name}`)
+      : commaEnergy(comment, (key) => namesEnergy(key) || named === `key:${key}`);
   }
 
   /** Notes what a frame leaves open; it is held until that is answered. */

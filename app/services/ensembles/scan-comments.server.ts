@@ -2,6 +2,7 @@ import { and, asc, eq, gt, isNotNull, sql } from "drizzle-orm";
 import { db, type Queryable } from "../../db/client.server.ts";
 import { frames } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
+import { fieldsWithPoints } from "../../lib/intake/comma-energy.ts";
 import { EnergyScan } from "../../lib/intake/energies.ts";
 import { isExtended } from "../../lib/intake/extended-comment.ts";
 import { withDecimalPoints } from "../../lib/intake/reading-choices.ts";
@@ -67,7 +68,9 @@ export async function scanComments(
     for (const { comment, file, fields, ...row } of rows) {
       const from = byPosition.get(file);
       const sdf = from?.format.startsWith("SDF") ? unpackFields(fields ?? []) : undefined;
-      scan.add({ ...row, file: from?.name ?? "" }, decimalCommas ? withDecimalPoints(comment) : comment, sdf);
+      const place = { ...row, file: from?.name ?? "" };
+      if (decimalCommas) scan.add(place, withDecimalPoints(comment), sdf && fieldsWithPoints(sdf));
+      else scan.add(place, comment, sdf);
       firstComment ??= comment;
       seen += 1;
       if (sdf ? sdf.size > 0 : isExtended(comment)) extended += 1;
