@@ -50,6 +50,7 @@ export async function freezeFirst(at: { ensembleId: string; siftId: string }, te
     moment: [],
     outside: [],
     searches: [],
+    said: { splits: [], measured: [] },
   });
   const content = buildContent(source, null);
   const packed: PackedFile[] = [];

@@ -2,7 +2,7 @@ import { readFileSync } from "node:fs";
 import { eq } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db, inTransaction } from "~/db/client.server";
-import { columns } from "~/db/schema.server";
+import { columns, logbook } from "~/db/schema.server";
 import type { EnsembleAnswer } from "~/lib/api/schemas";
 import { averageOf } from "~/lib/averages/average";
 import { averageErrorsOf, propertyMoments } from "~/lib/averages/property-set";
@@ -11,11 +11,13 @@ import { angle, distance, torsion } from "~/lib/measure/geometry";
 import { distinctPopulations } from "~/lib/thermo/populations";
 import type { SiftView } from "~/lib/views";
 import type { Actor } from "~/services/auth/access.server";
+import { keepMeasured } from "~/services/averages/keep-measured.server";
 import { loadAverages } from "~/services/averages/load-averages.server";
 import { loadTrust } from "~/services/averages/load-trust.server";
 import { addObservable, observableRequestSchema } from "~/services/averages/observe.server";
 import { recomputeObservables } from "~/services/averages/recompute-observables.server";
 import { setRule } from "~/services/averages/set-rule.server";
+import { joinAtoms, splitAtoms } from "~/services/averages/split-atoms.server";
 import { lockEnsemble, storeColumn } from "~/services/columns/store-column.server";
 import { computeAverages } from "~/services/jobs/pool.server";
 import { makeMember } from "../factories/people";
@@ -250,6 +252,88 @@ describe("observables picked on the structure", () => {
         request: observableRequestSchema.parse({ observable: "distance", atoms: [1, 2] }),
       }),
     ).rejects.toMatchObject({ code: "not-found" });
+  });
+});
+
+describe("what people say of averages", () => {
+  const person = () => ({ actor: analyst, ensembleId: ensemble.id });
+  const shifts = async () =>
+    [...(await csv())].filter(([name]) => name.startsWith("shift H")).map(([, row]) => Number(row.average));
+  const seen = () => loadAverages({ ...person(), siftId: sift.id });
+  const atomsOfShift = async () => {
+    const { properties } = await seen();
+    const [first] = properties.filter(({ quantity }) => quantity === "shift");
+    return first!.atoms!.map((atom) => atom + 1) as [number, number, number];
+  };
+
+  it("takes a group apart and puts it together again, in every average and in the logbook", async () => {
+    const [a, b, c] = await atomsOfShift();
+    await splitAtoms({ ...person(), parts: [[b, c], [a]] });
+    const apart = await shifts();
+    for (const [k, value] of [1, 2.5, 2.5].entries()) expect(apart[k]).toBeCloseTo(value, 12);
+    const { said, properties } = await seen();
+    expect(said).toMatchObject({ version: 1, splits: [{ parts: [[a], [b, c]], by: expect.any(String) }] });
+    const groups = properties
+      .filter(({ quantity }) => quantity === "shift")
+      .map(({ atoms }) => atoms!.length);
+    expect(groups).toEqual([1, 2, 2]);
+    await joinAtoms({ ...person(), atom: c });
+    for (const value of await shifts()) expect(value).toBeCloseTo(2, 12);
+    const rows = await db.select().from(logbook).where(eq(logbook.ensembleId, ensemble.id));
+    expect(rows.map(({ type }) => type)).toEqual(expect.arrayContaining(["atoms-split", "atoms-joined"]));
+  });
+
+  it("refuses parts that make no sense, and whoever may not compute", async () => {
+    const [a, b] = await atomsOfShift();
+    const carbon = [...set.graph.elements.keys()].find((atom) => set.graph.elements[atom] === 6)! + 1;
+    for (const parts of [[[a]], [[a], []], [[a], [a]], [[a], [999]], [[a], [Number.NaN]]]) {
+      await expect(splitAtoms({ ...person(), parts }), String(parts)).rejects.toMatchObject({
+        code: "invalid",
+      });
+    }
+    await expect(splitAtoms({ ...person(), parts: [[a], [carbon]] })).rejects.toThrow("no equivalent atoms");
+    const reader = await makeMember(lab.team.id, "reader");
+    const asReader: Actor = { kind: "user", userId: reader.id, sessionId: "r".repeat(16) };
+    await expect(
+      splitAtoms({ actor: asReader, ensembleId: ensemble.id, parts: [[a], [b]] }),
+    ).rejects.toMatchObject({ code: "forbidden" });
+  });
+
+  it("keeps measured values with who said them, and never over what somebody else changed", async () => {
+    const [a] = await atomsOfShift();
+    const record = (values: [number, number][]) =>
+      JSON.stringify({ quantity: "shift", are: null, values, scaling: [], swapped: [] });
+    const { version } = (await seen()).said;
+    await keepMeasured({ ...person(), record: record([[a, 2.1]]), version });
+    expect((await seen()).said.measured).toMatchObject([
+      { quantity: "shift", values: [[a, 2.1]], by: expect.any(String) },
+    ]);
+    await expect(keepMeasured({ ...person(), record: record([[a, 3]]), version })).rejects.toMatchObject({
+      code: "conflict",
+    });
+    for (const wrong of [
+      "{",
+      "[]",
+      record([[a, 1e300]]),
+      record([[999, 1]]),
+      record([
+        [a, 1],
+        [a, 2],
+      ]),
+    ]) {
+      await expect(
+        keepMeasured({ ...person(), record: wrong, version: version + 1 }),
+        wrong,
+      ).rejects.toMatchObject({ code: "invalid" });
+    }
+    await keepMeasured({ ...person(), record: record([]), version: version + 1 });
+    expect((await seen()).said.measured).toEqual([]);
+    const rows = await db.select().from(logbook).where(eq(logbook.ensembleId, ensemble.id));
+    const told = rows.filter(({ type }) => type === "measured-kept").map(({ data }) => data);
+    expect(told).toMatchObject([
+      { count: 1, changes: [{ before: null, after: "2.1" }] },
+      { count: 0, changes: [{ before: "2.1", after: null }] },
+    ]);
   });
 });
 

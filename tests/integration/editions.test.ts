@@ -1,16 +1,21 @@
 import { createHash } from "node:crypto";
 import { and, eq, sql } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
-import { db } from "~/db/client.server";
+import { db, inTransaction } from "~/db/client.server";
 import { driverCode } from "~/db/driver-errors.server";
 import { newId } from "~/db/new-id.server";
 import { columns, editionFiles, editions, ensembles, jobs, logbook, verifications } from "~/db/schema.server";
 import { canonicalJson } from "~/lib/edition/canonical-json";
+import { editionContentSchema } from "~/lib/edition/content";
+import { keepMeasured } from "~/services/averages/keep-measured.server";
+import { joinAtoms, splitAtoms } from "~/services/averages/split-atoms.server";
+import { lockEnsemble, storeColumn } from "~/services/columns/store-column.server";
 import { askToVerify } from "~/services/editions/ask-to-verify.server";
 import { lastVerification } from "~/services/editions/find-edition.server";
 import { loadHandOver } from "~/services/editions/load-hand-over.server";
 import { openEditionFile } from "~/services/editions/open-edition-file.server";
 import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
+import { unpackMolecule } from "~/services/ensembles/molecule.server";
 import { waitForJob } from "~/services/jobs/wait-for-job.server";
 import { freeze, makeSifted, personOf } from "../factories/editions";
 import { freezeFirst } from "../factories/first-edition";
@@ -288,6 +293,85 @@ describe("what an ensemble holds beside populations", () => {
     const answer = await verify(made);
     expect(answer).toMatchObject({ same: true, differing: [] });
     expect(answer.notes.join()).toContain("column dipole: The column is not there any more");
+  });
+});
+
+describe("what people said of averages", () => {
+  it("is frozen with its figures and without names, and verifies whatever they say later", async () => {
+    const [row] = await db.select().from(ensembles).where(eq(ensembles.id, at.ensembleId));
+    const { offsets, neighbours, elements } = unpackMolecule(row!);
+    const around = (atom: number) => [...neighbours.subarray(offsets[atom]!, offsets[atom + 1]!)];
+    const hydrogensOf = (atom: number) => around(atom).filter((one) => elements[one] === 1);
+    const methyl = elements.findIndex((z, atom) => z === 6 && hydrogensOf(atom).length === 3);
+    const [a, b, c] = hydrogensOf(methyl).map((atom) => atom + 1) as [number, number, number];
+    await inTransaction(async (tx) => {
+      const where = { teamId: lab.team.id, ensembleId: at.ensembleId, userId: lab.analyst.id };
+      await lockEnsemble(tx, where);
+      for (const [k, atom] of [a, b, c].entries()) {
+        await storeColumn(tx, where, {
+          ...{ name: `shift H${atom}`, kind: "property", unit: "ppm", origin: "table:shifts.csv" },
+          ...{ quantity: "shift", atom },
+          data: {
+            values: new Float64Array(row!.frames).fill(k + 1),
+            present: new Uint8Array(row!.frames).fill(1),
+          },
+        });
+      }
+    });
+    const plain = await freeze(actor(), at);
+    const person = { actor: actor(), ensembleId: at.ensembleId };
+    await splitAtoms({ ...person, parts: [[a], [b], [c]] });
+    // H a is computed 1 and H b 2: as entered each is 1 off, swapped none is.
+    const record = {
+      quantity: "shift",
+      are: null,
+      values: [
+        [a, 2],
+        [b, 1],
+      ],
+      scaling: [],
+      swapped: [a],
+    };
+    await keepMeasured({ ...person, record: JSON.stringify(record), version: 1 });
+    const made = await freeze(actor(), at);
+    const text = (await rowOf(made.id)).content;
+    expect(text).not.toContain(lab.analyst.id);
+    const content = editionContentSchema.parse(JSON.parse(text));
+    expect(content.splits).toEqual([[[a], [b], [c]]]);
+    const shift = content.measured?.[0];
+    const [nucleus] = shift!.nuclei;
+    expect(nucleus).toMatchObject({ z: 1, agreement: { n: 2, corrected: null } });
+    expect(nucleus!.agreement!.mae).toBeCloseTo(0, 12);
+    expect(nucleus!.agreement!.rmse).toBeCloseTo(0, 12);
+    const [pair] = shift!.pairs;
+    expect(pair).toMatchObject({ atoms: [a, b], z: 1, chosen: "swapped" });
+    expect(pair!.entered.mae).toBeCloseTo(1, 12);
+    expect(pair!.swapped.nucleusMae).toBeCloseTo(0, 12);
+    expect(content.words.methods).toContain("slow rotor was assumed by hand");
+    expect(content.words.methods).toContain("H: 2 values, mean absolute error 0.00");
+    const lines = async (name: string) => (await bytesOf(made.id, name)).toString("utf8").split("\r\n");
+    const of = (all: string[], start: string) => all.find((line) => line.startsWith(start)) ?? "";
+    expect(of(await lines("measured.csv"), `shift,ppm,H,H${a},`)).toMatch(/,1,[^,]*,swapped,,$/);
+    expect(of(await lines("measured.csv"), `shift,ppm,H,H${c},`)).toMatch(/,,,,,$/);
+    expect(of(await lines("agreement.csv"), "shift,ppm,H,all,as chosen,2,")).not.toBe("");
+    const both = await lines("agreement.csv");
+    expect(of(both, `shift,ppm,H,H${a} and H${b},swapped (chosen),2,`)).not.toBe("");
+    expect(of(both, `shift,ppm,H,H${a} and H${b},as entered,2,`)).not.toBe("");
+    await joinAtoms({ ...person, atom: b });
+    const none = { ...record, values: [], swapped: [] };
+    await keepMeasured({ ...person, record: JSON.stringify(none), version: 3 });
+    expect(await verify(made)).toEqual({ same: true, files: 18, differing: [], notes: [] });
+    expect(await verify(plain)).toMatchObject({ same: true, differing: [] });
+    const [, later] = [
+      await freeze(actor(), at),
+      await loadHandOver({
+        ...person,
+        ...{ siftId: at.siftId, temperature: 298.15, weights: "auto", compare: null },
+      }),
+    ];
+    const words = later.editions[0]?.changed.join("; ");
+    expect(words).toContain(`groups taken apart by hand: none instead of H${a} | H${b} | H${c}`);
+    expect(words).toContain("measured values of shift gone");
   });
 });
 

@@ -1,19 +1,23 @@
 import { Download } from "lucide-react";
-import { useState } from "react";
+import { Fragment, useMemo, useState } from "react";
 import { saveText } from "~/components/charts/export-figure";
 import { Button } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { useWorkbench } from "~/components/workbench/workbench-context";
+import type { AveragesView, SaidView } from "~/lib/averages/averages-view";
 import { digitsFor } from "~/lib/averages/words";
 import { atomName } from "~/lib/chem/elements";
-import { ABSENT, fixed, formatTemperature, plural, signed } from "~/lib/format";
+import { ABSENT, fixed, formatDate, formatTemperature, plural, signed } from "~/lib/format";
 import { toCsv } from "~/lib/workbench/tsv";
 import { AtomDrawing } from "./atom-drawing";
+import { ContributionChart } from "./contribution-chart";
 import { MeasuredBlock } from "./measured-block";
 import { anchorOf } from "./property-table";
+import { JoinGroup, SplitGroup } from "./split-group";
 import { type Averaged, type AveragedProperty, contributionsTo } from "./use-averages";
 import type { WeighedConformers } from "./use-weighed";
+import { ValueDistribution } from "./value-distribution";
 
 /** A per-atom quantity: equivalent atoms share a row, beside the drawing that shows which they are. */
 export function AtomTable({
@@ -21,12 +25,14 @@ export function AtomTable({
   list,
   averaged,
   weighed,
+  view,
 }: {
   quantity: string;
   /** One a group of equivalent atoms. */
   list: readonly AveragedProperty[];
   averaged: Averaged;
   weighed: WeighedConformers;
+  view: AveragesView;
 }) {
   const { ensemble, temperatureK, coordinates, result } = useWorkbench();
   const [chosen, setChosen] = useState<string | null>(null);
@@ -36,8 +42,11 @@ export function AtomTable({
   const rows = list.map((one) => {
     const { mover } = contributionsTo(one, weighed, averaged.populations, temperatureK);
     const digits = Math.max(2, digitsFor(unit, one.average.value));
-    return { one, mover, digits, name: groupName(one.property.atoms ?? [], ensemble.elements) };
+    const members = one.property.atoms ?? [];
+    const split = splitOf(view.said, members);
+    return { one, mover, digits, members, split, name: groupName(members, ensemble.elements) };
   });
+  const apart = rows.filter((row) => row.split !== null);
   const picked = rows.find((row) => row.one.property.id === chosen)?.one.property.atoms ?? [];
   const merged = rows.filter((row) => (row.one.property.atoms ?? []).length > 1);
   const atoms = rows.reduce((total, row) => total + (row.one.property.atoms ?? []).length, 0);
@@ -89,7 +98,11 @@ export function AtomTable({
             Equivalent are atoms that an exchange carries into each other with the hand of every centre and
             the sides of every double bond kept
             {ensemble.chirality === "achiral" ? ", or every hand turned, as the molecule is achiral." : "."}{" "}
-            Hydrogens of a CH<sub>2</sub> beside a stereocentre stay apart.
+            Hydrogens of a CH<sub>2</sub> beside a stereocentre stay apart. Choose a row to see what makes its
+            average{ensemble.mayCompute && merged.length > 0 ? ", or to take its atoms apart" : ""}.
+            {apart.length > 0
+              ? ` ${apart.map((row) => row.name).join("; ")}: taken apart by hand, each a signal of its own.`
+              : ""}
           </p>
         </div>
         <Table aria-label={`${quantity} by atom`} className="figures">
@@ -118,53 +131,124 @@ export function AtomTable({
             </tr>
           </thead>
           <tbody>
-            {rows.map(({ one, mover, digits, name }) => (
-              <Tr key={one.property.id} selected={one.property.id === chosen}>
-                <Td wrap>
-                  <button
-                    type="button"
-                    aria-pressed={one.property.id === chosen}
-                    className="rounded-sm text-left font-semibold hover:underline pointer-coarse:min-h-11"
-                    onClick={() => setChosen(one.property.id === chosen ? null : one.property.id)}
-                  >
-                    {name}
-                  </button>
-                </Td>
-                {one.averages.map((average, k) => (
-                  <Td
-                    key={averaged.temperatures[k]}
-                    align="right"
-                    className={k === averaged.here ? "" : "text-ink-2 max-sm:hidden"}
-                  >
-                    {fixed(average.value, digits)}
+            {rows.map(({ one, mover, digits, name, members, split }) => (
+              <Fragment key={one.property.id}>
+                <Tr selected={one.property.id === chosen}>
+                  <Td wrap>
+                    <button
+                      type="button"
+                      className="rounded-sm text-left font-semibold hover:underline pointer-coarse:min-h-11"
+                      aria-expanded={one.property.id === chosen}
+                      onClick={() => setChosen(one.property.id === chosen ? null : one.property.id)}
+                    >
+                      {name}
+                    </button>
+                    {split ? <span className="block text-xs text-ink-3">split by hand</span> : null}
                   </Td>
-                ))}
-                <Td align="right">
-                  {one.error === null || one.average.value === null
-                    ? ABSENT
-                    : `± ${fixed(one.error.sd, digits)}`}
-                </Td>
-                <Td align="right" className="max-lg:hidden">
-                  {fixed(one.average.spread, digits)}
-                </Td>
-                <Td align="right" className="max-sm:hidden">
-                  {mover === null ? (
-                    ABSENT
-                  ) : Math.abs(mover.change) < 0.5 * 10 ** -digits ? (
-                    <span className="text-ink-3">below {fixed(10 ** -digits, digits)}</span>
-                  ) : (
-                    `${mover.name}, ${signed(mover.change, digits)}`
-                  )}
-                </Td>
-              </Tr>
+                  {one.averages.map((average, k) => (
+                    <Td
+                      key={averaged.temperatures[k]}
+                      align="right"
+                      className={k === averaged.here ? "" : "text-ink-2 max-sm:hidden"}
+                    >
+                      {fixed(average.value, digits)}
+                    </Td>
+                  ))}
+                  <Td align="right">
+                    {one.error === null || one.average.value === null
+                      ? ABSENT
+                      : `± ${fixed(one.error.sd, digits)}`}
+                  </Td>
+                  <Td align="right" className="max-lg:hidden">
+                    {fixed(one.average.spread, digits)}
+                  </Td>
+                  <Td align="right" className="max-sm:hidden">
+                    {mover === null ? (
+                      ABSENT
+                    ) : Math.abs(mover.change) < 0.5 * 10 ** -digits ? (
+                      <span className="text-ink-3">below {fixed(10 ** -digits, digits)}</span>
+                    ) : (
+                      `${mover.name}, ${signed(mover.change, digits)}`
+                    )}
+                  </Td>
+                </Tr>
+                {one.property.id === chosen ? (
+                  <tr>
+                    <td colSpan={averaged.temperatures.length + 4} className="border-b border-rule pt-2 pb-5">
+                      <p className="flex flex-wrap items-center gap-x-4 text-xs text-ink-3">
+                        {split ? <span>{splitWords(split)}.</span> : null}
+                        {members.length > 1 ? (
+                          <span>{members.length} equivalent atoms, one signal.</span>
+                        ) : null}
+                        {ensemble.mayCompute && members.length > 1 ? (
+                          <SplitGroup key={members.join()} atoms={members} name={name} />
+                        ) : null}
+                        {ensemble.mayCompute && split ? (
+                          <JoinGroup atom={members[0] ?? 0} name={name} />
+                        ) : null}
+                      </p>
+                      <AtomDetail
+                        one={{ ...one, property: { ...one.property, name: `${quantity} of ${name}` } }}
+                        averaged={averaged}
+                        weighed={weighed}
+                      />
+                    </td>
+                  </tr>
+                ) : null}
+              </Fragment>
             ))}
           </tbody>
         </Table>
       </div>
-      <MeasuredBlock quantity={quantity} list={list} />
+      <MeasuredBlock quantity={quantity} list={list} view={view} />
     </section>
   );
 }
+
+/** What makes the average of one group of atoms, and where the shapes lie. */
+function AtomDetail({
+  one,
+  averaged,
+  weighed,
+}: {
+  one: AveragedProperty;
+  averaged: Averaged;
+  weighed: WeighedConformers;
+}) {
+  const { temperatureK, selected, select, rows } = useWorkbench();
+  const chosenFrames = useMemo(() => new Set(selected), [selected]);
+  const order = useMemo(() => rows.map((row) => row.frame), [rows]);
+  const { list } = contributionsTo(one, weighed, averaged.populations, temperatureK);
+  return (
+    <div className="mt-3 grid gap-x-10 gap-y-8">
+      <ContributionChart
+        averaged={one}
+        list={list}
+        weighed={weighed}
+        selected={chosenFrames}
+        onChoose={(frame) => select(frame, "only", order)}
+      />
+      <ValueDistribution
+        averaged={one}
+        weighed={weighed}
+        populations={averaged.populations}
+        onChoose={(frame, keys) =>
+          select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order)
+        }
+      />
+    </div>
+  );
+}
+
+/** The last split by hand that made this group what it is. */
+function splitOf(said: SaidView, members: readonly number[]) {
+  return (
+    said.splits.findLast(({ parts }) => parts.some((part) => part.includes((members[0] ?? -1) + 1))) ?? null
+  );
+}
+
+const splitWords = ({ by, at }: SaidView["splits"][number]) =>
+  `split by hand${by === null ? "" : ` by ${by}`}, ${formatDate(at)}`;
 
 function groupName(atoms: readonly number[], elements: readonly number[]): string {
   return atoms.map((atom) => atomName(elements, atom)).join(", ");

@@ -9,7 +9,7 @@ import { CatchingUp, OutdatedNote, SectionState } from "~/components/workbench/s
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { useSameSift } from "~/hooks/use-same-sift";
 import type { AveragesView } from "~/lib/averages/averages-view";
-import { averagesFinding } from "~/lib/averages/words";
+import { averagesFinding, propertyName } from "~/lib/averages/words";
 import { plural } from "~/lib/format";
 import { AtomTable } from "./atom-table";
 import { AveragesSettings } from "./averages-settings";
@@ -109,9 +109,13 @@ function Filled({
   const csv = csvAddress(view.siftId ?? "", temperatureK, state.weights, error.sigma, weighed.level.id);
   if (shown === null) return null;
   const { one, contributions } = shown;
+  const named = (property: AveragedProperty["property"]) => ({
+    ...property,
+    name: propertyName(property, ensemble.elements),
+  });
   const finding = averagesFinding(
     {
-      property: one.property,
+      property: named(one.property),
       average: one.average,
       mover: contributions.mover && {
         name: contributions.mover.name,
@@ -120,7 +124,10 @@ function Filled({
         without: contributions.mover.contribution.without,
       },
     },
-    averaged.properties,
+    [
+      ...averaged.properties.filter(({ property }) => property.quantity === null),
+      ...perAtom.flatMap(({ list }) => list),
+    ].map(({ property, average }) => ({ property: named(property), average })),
     temperatureK,
   );
   return (
@@ -187,7 +194,14 @@ function Filled({
         </>
       ) : null}
       {perAtom.map(({ quantity, list }) => (
-        <AtomTable key={quantity} quantity={quantity} list={list} averaged={averaged} weighed={weighed} />
+        <AtomTable
+          key={quantity}
+          quantity={quantity}
+          list={list}
+          averaged={averaged}
+          weighed={weighed}
+          view={view}
+        />
       ))}
       <PickColumn />
     </>

@@ -1,24 +1,59 @@
-import { useCallback, useMemo } from "react";
+import { useCallback, useEffect, useMemo } from "react";
 import { useLocation, useNavigate } from "react-router";
-import { type MeasuredState, measuredIn, withMeasured } from "~/lib/averages/measured";
+import type { SaidView } from "~/lib/averages/averages-view";
+import {
+  type MeasuredState,
+  measuredIn,
+  measuredState,
+  nothingMeasured,
+  withMeasured,
+  writeMeasured,
+} from "~/lib/averages/measured";
 import { searchOf } from "~/lib/url-state";
 
-/** Measured values of a per-atom quantity, which the address holds: whoever opens it sees the same comparison. */
-export function useMeasured(quantity: string): [MeasuredState, (change: Partial<MeasuredState>) => void] {
+export interface Measured {
+  /** The draft, else what is kept. */
+  state: MeasuredState;
+  kept: MeasuredState;
+  /** True while the address says something else than what is kept with the ensemble. */
+  draft: boolean;
+  change: (part: Partial<MeasuredState>) => void;
+  /** Back to what is kept. */
+  drop: () => void;
+}
+
+/** Measured values of a per-atom quantity: kept with the ensemble; until then a draft that the address holds. */
+export function useMeasured(quantity: string, said: SaidView): Measured {
   const { search, pathname } = useLocation();
   const navigate = useNavigate();
-  const state = useMemo(() => measuredIn(new URLSearchParams(search), quantity), [search, quantity]);
-  const change = useCallback(
-    (part: Partial<MeasuredState>) => {
+  const kept = useMemo(() => {
+    const record = said.measured.find((one) => one.quantity === quantity);
+    return record ? measuredState(record) : nothingMeasured(quantity);
+  }, [said, quantity]);
+  const draft = useMemo(() => measuredIn(new URLSearchParams(search), quantity), [search, quantity]);
+  const set = useCallback(
+    (state: MeasuredState) => {
       const now = new URLSearchParams(search);
-      const next = searchOf(withMeasured(now, { ...measuredIn(now, quantity), ...part }));
+      const next = searchOf(withMeasured(now, state, kept));
       if (next === searchOf(now)) return;
       void navigate(
         { pathname, search: next },
         { replace: true, preventScrollReset: true, defaultShouldRevalidate: false },
       );
     },
-    [search, pathname, navigate, quantity],
+    [search, pathname, navigate, kept],
   );
-  return [state, change];
+  const settled = draft !== null && writeMeasured(draft) === writeMeasured(kept);
+  // What was a draft and is kept by now needs no place in the address.
+  useEffect(() => {
+    if (settled) set(kept);
+  }, [settled, set, kept]);
+  const state = draft ?? kept;
+  return {
+    state,
+    kept,
+    draft: draft !== null && !settled,
+    change: useCallback((part) => set({ ...state, ...part }), [set, state]),
+    drop: useCallback(() => set(kept), [set, kept]),
+  };
 }

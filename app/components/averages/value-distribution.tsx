@@ -3,6 +3,7 @@ import { ChartText, type Choose, usePlot } from "~/components/charts/plot";
 import { PopulationDistribution } from "~/components/charts/population-distribution";
 import { averageOf, momentsOf } from "~/lib/averages/average";
 import { type AverageRule, possibleRules, RULE_WORDS } from "~/lib/averages/rule";
+import { steadyWords } from "~/lib/averages/steady";
 import { valueHistogram } from "~/lib/averages/value-histogram";
 import { digitsFor } from "~/lib/averages/words";
 import { fixed } from "~/lib/format";
@@ -39,9 +40,14 @@ export function ValueDistribution({
       title="Where the shapes lie"
       fileName="value-distribution"
       note={
-        moments.mirrored.some((flag) => flag === 1)
-          ? "A conformer that stands for a mirror pair counts half at each sign."
-          : undefined
+        [
+          steadyWords(moments, unit, digits),
+          moments.mirrored.some((flag) => flag === 1)
+            ? "A conformer that stands for a mirror pair counts half at each sign."
+            : null,
+        ]
+          .filter(Boolean)
+          .join(" ") || undefined
       }
       label={`Distribution of ${property.name} by population`}
       height={282}

@@ -36,7 +36,11 @@ export function MeasureDistribution({
     <PopulationDistribution
       title={`${TITLES[kind]} ${name}`}
       fileName={`${kind}-distribution`}
-      note={[note, undefinedNote(histogram.undefinedShare)].filter(Boolean).join(" ") || undefined}
+      note={
+        [steadyNote(histogram, kind), note, undefinedNote(histogram.undefinedShare)]
+          .filter(Boolean)
+          .join(" ") || undefined
+      }
       label={`Distribution of ${name} by population`}
       height={260}
       bins={bins}
@@ -54,6 +58,15 @@ export function MeasureDistribution({
       onChoose={onChoose}
     />
   );
+}
+
+/** One bar alone says nothing by its height: what it means is said in words. */
+function steadyNote({ bins }: MeasureHistogram, kind: MeasureKind): string | null {
+  const [only, ...more] = bins.filter(({ share }) => share > 0);
+  if (only === undefined || more.length > 0) return null;
+  const digits = kind === "distance" ? 2 : 1;
+  const unit = kind === "distance" ? "\u00a0Å" : "°";
+  return `Every conformer lies between ${fixed(only.from, digits)} and ${fixed(only.to, digits)}${unit}: this ${kind} does not vary over the ensemble.`;
 }
 
 function undefinedNote(share: number): string | null {

@@ -19,6 +19,7 @@ import { AveragesTable } from "./averages-table";
 import { Edition3D } from "./edition-3d";
 import { EditionDownloads } from "./edition-downloads";
 import { EditionHead } from "./edition-head";
+import { MeasuredTables } from "./measured-tables";
 import { PopulationTable } from "./population-table";
 import { SearchesTable } from "./searches-table";
 import { Shapes } from "./shapes";
@@ -48,6 +49,7 @@ export function EditionReport({
       </div>
       <Plots edition={edition} />
       <AveragesTable edition={edition} />
+      <MeasuredTables edition={edition} />
       <TemperatureTable edition={edition} />
       <div className="mt-10 grid gap-x-12 gap-y-10 lg:grid-cols-2 print:grid-cols-1">
         <Method edition={edition} />

@@ -40,7 +40,9 @@ export function AveragesText() {
         the sides of every double bond kept; in an achiral molecule also with every hand turned.
         Diastereotopic hydrogens of a CH
         <sub>2</sub> so stay apart. A frame whose file numbers equivalent atoms otherwise is read in the
-        common numbering first. Rotation about amides and hindered bonds is taken to be fast.
+        common numbering first. Rotation about amides and hindered bonds is taken to be fast, unless somebody
+        takes a group apart by hand: each part is a signal of its own then, for every per-atom quantity of the
+        ensemble, until the group is put together again.
       </p>
       <p>
         Couplings: J = A cos<sup>2</sup> t + B cos t + C with t the torsion between the coupled nuclei{" "}
@@ -62,6 +64,12 @@ export function AveragesText() {
         nucleus at a time and never pooled; from {FEWEST_FOR_CORRECTION} pairs on also the line of computed
         against measured values, d = m e + b, and the mean absolute deviation of (d − b)/m. A line fitted to
         the values that it is compared with flatters.
+      </p>
+      <p>
+        Two signals that the bonds do not tell apart (diastereotopic hydrogens or groups, parts of a group
+        taken apart) may have been assigned either way: both assignments are reported, each with the mean
+        absolute deviation of the two and of their nucleus, and one of them is chosen by a person. Of more
+        than two alike the nearest through bonds make a pair.
       </p>
       <p>
         Labels of torsions: c up to 30°, g± to 90°, a± to 150°, t above{" "}

@@ -51,3 +51,31 @@ export function mergeEquivalentAtoms(
     return total / atoms.length;
   }
 }
+
+/**
+ * Classes of equivalent atoms with groups that somebody took apart: atoms of a class stay together only where every
+ * split has them in one part. A split never joins what symmetry holds apart.
+ *
+ * @param classes smallest atom of each atom's class
+ * @param splits parts of atoms (from 0), a list a split
+ * @returns smallest atom of each atom's class
+ * @example splitClasses([0, 1, 1, 1], [[[1], [2, 3]]]) // [0, 1, 2, 2]
+ */
+export function splitClasses(
+  classes: ArrayLike<number>,
+  splits: readonly (readonly (readonly number[])[])[],
+): Int32Array {
+  const keys = Array.from(classes, String);
+  for (const parts of splits) {
+    for (const [k, part] of parts.entries()) {
+      for (const atom of part) if (keys[atom] !== undefined) keys[atom] += `/${k}`;
+    }
+    for (const [atom, key] of keys.entries()) keys[atom] = `${key};`;
+  }
+  const firsts = new Map<string, number>();
+  return Int32Array.from(keys, (key, atom) => {
+    const first = firsts.get(key) ?? atom;
+    firsts.set(key, first);
+    return first;
+  });
+}

@@ -1,10 +1,15 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import {
+  areShieldings,
   type MeasuredState,
   measuredIn,
+  measuredRecord,
+  measuredState,
+  nothingMeasured,
   readMeasured,
   readPasted,
+  saysNothing,
   setBeside,
   withMeasured,
   writeMeasured,
@@ -111,9 +116,14 @@ describe("measured values in an address", () => {
         [12, -0.4],
       ]),
       scaling: new Map([[6, { slope: -1.05, intercept: 186.2 }]]),
+      swapped: new Set([12]),
     };
-    expect(readMeasured(writeMeasured(state)!)).toEqual(state);
-    expect(writeMeasured({ quantity: "x", are: null, values: new Map(), scaling: new Map() })).toBeNull();
+    expect(readMeasured(writeMeasured(state))).toEqual(state);
+    expect(writeMeasured(nothingMeasured("x"))).toBe("x");
+    expect(readMeasured("x")).toEqual(nothingMeasured("x"));
+    expect(measuredState(measuredRecord(state))).toEqual(state);
+    expect(saysNothing(measuredRecord(state))).toBe(false);
+    expect(saysNothing(measuredRecord(nothingMeasured("x")))).toBe(true);
   });
 
   it("are left out where they are none", () => {
@@ -124,15 +134,31 @@ describe("measured values in an address", () => {
 
   it("stand beside those of other quantities and everything else", () => {
     const params = new URLSearchParams("T=310&meas=charge~2:0.5&meas=shift~1:77.3");
-    expect([...measuredIn(params, "shift").values]).toEqual([[1, 77.3]]);
-    const changed = withMeasured(params, { ...measuredIn(params, "shift"), values: new Map([[1, 70]]) });
-    expect([...changed]).toEqual([
+    const draft = measuredIn(params, "shift")!;
+    expect([...draft.values]).toEqual([[1, 77.3]]);
+    expect(measuredIn(params, "coupling")).toBeNull();
+    const kept = nothingMeasured("shift");
+    expect([...withMeasured(params, { ...draft, values: new Map([[1, 70]]) }, kept)]).toEqual([
       ["T", "310"],
       ["meas", "charge~2:0.5"],
       ["meas", "shift~1:70"],
     ]);
-    const none = withMeasured(params, { ...measuredIn(params, "shift"), values: new Map() });
-    expect(none.getAll("meas")).toEqual(["charge~2:0.5"]);
+    expect(withMeasured(params, kept, kept).getAll("meas")).toEqual(["charge~2:0.5"]);
+  });
+
+  it("stay as a draft that takes away what is kept, and go where they say what is kept", () => {
+    const kept = { ...nothingMeasured("shift"), values: new Map([[1, 77.3]]) };
+    const emptied = withMeasured(new URLSearchParams(), nothingMeasured("shift"), kept);
+    expect(emptied.getAll("meas")).toEqual(["shift"]);
+    expect(measuredIn(emptied, "shift")!.values.size).toBe(0);
+    expect(withMeasured(emptied, kept, kept).has("meas")).toBe(false);
+  });
+
+  it("stand beside shieldings or shifts as somebody said, else as the name says", () => {
+    expect(areShieldings({ quantity: "13C shielding", are: null }, "ppm")).toBe(true);
+    expect(areShieldings({ quantity: "13C shielding", are: "shifts" }, "ppm")).toBe(false);
+    expect(areShieldings({ quantity: "shift", are: null }, "ppm")).toBe(false);
+    expect(areShieldings({ quantity: "J", are: "shieldings" }, "Hz")).toBe(false);
   });
 
   it("are read off pasted lines, whatever separates them", () => {

@@ -1,6 +1,7 @@
+import type { MeasuredRecord } from "./averaging.ts";
 import { type Agreement, againstMeasured, fitShieldings, type Line, shiftOf } from "./shielding-fit.ts";
 
-/** Measured values and scaling of one per-atom quantity, as the address holds them. */
+/** Measured values and scaling of one per-atom quantity, as the ensemble keeps them or a draft in the address has them. */
 export interface MeasuredState {
   quantity: string;
   /** What was said of the numbers; null leaves it to their name. */
@@ -9,9 +10,12 @@ export interface MeasuredState {
   values: ReadonlyMap<number, number>;
   /** Typed in, by atomic number; a nucleus that is absent is fitted. */
   scaling: ReadonlyMap<number, Omit<Line, "n">>;
+  /** First atoms (from 1) of the pairs whose two values are exchanged. */
+  swapped: ReadonlySet<number>;
 }
 
-const MOST_MEASURED = 400;
+/** Values, lines and swapped pairs of one quantity. */
+export const MOST_MEASURED = 400;
 const NUMBER = /^-?\d{1,6}(\.\d{1,6})?$/;
 
 function numberOf(text: string | undefined): number | null {
@@ -27,58 +31,104 @@ export function readMeasured(text: string): MeasuredState {
   const [quantity = "", ...parts] = text.split("~");
   const values = new Map<number, number>();
   const scaling = new Map<number, Omit<Line, "n">>();
+  const swapped = new Set<number>();
   let are: MeasuredState["are"] = null;
   for (const part of parts.slice(0, MOST_MEASURED)) {
     if (part === "shieldings" || part === "shifts") are = part;
     const [key = "", first, second] = part.split(":");
     const [a, b] = [numberOf(first), numberOf(second)];
     const z = /^z(\d{1,3})$/.exec(key)?.[1];
+    const pair = /^s(\d{1,5})$/.exec(part)?.[1];
+    if (pair !== undefined) swapped.add(Number(pair));
     if (z !== undefined && a !== null && a !== 0 && b !== null) {
       scaling.set(Number(z), { slope: a, intercept: b });
     } else if (/^\d{1,5}$/.test(key) && a !== null) values.set(Number(key), a);
   }
-  return { quantity: decode(quantity), are, values, scaling };
+  return { quantity: decode(quantity), are, values, scaling, swapped };
 }
 
-/** Writes it; null where nothing is measured or typed in. */
-export function writeMeasured({ quantity, are, values, scaling }: MeasuredState): string | null {
-  const parts = [
+/** Writes it; the name of the quantity alone where nothing is measured or typed in. */
+export function writeMeasured({ quantity, are, values, scaling, swapped }: MeasuredState): string {
+  return [
+    encode(quantity),
     ...[...values].sort(([a], [b]) => a - b).map(([atom, value]) => `${atom}:${plain(value)}`),
     ...[...scaling]
       .sort(([a], [b]) => a - b)
       .map(([z, { slope, intercept }]) => `z${z}:${plain(slope)}:${plain(intercept)}`),
+    ...[...swapped].sort((a, b) => a - b).map((atom) => `s${atom}`),
     ...(are === null ? [] : [are]),
-  ];
-  return parts.length === 0 ? null : [encode(quantity), ...parts].join("~");
+  ].join("~");
 }
 
 /** The parameter of an address that holds measured values, once a quantity. */
 export const MEASURED_PARAM = "meas";
 
-/** What an address says of a quantity. */
-export function measuredIn(params: URLSearchParams, quantity: string): MeasuredState {
-  const own = params.getAll(MEASURED_PARAM).map(readMeasured);
-  return (
-    own.find((state) => state.quantity === quantity) ?? {
-      quantity,
-      are: null,
-      values: new Map(),
-      scaling: new Map(),
-    }
-  );
+/** What nobody has said anything of. */
+export function nothingMeasured(quantity: string): MeasuredState {
+  return { quantity, are: null, values: new Map(), scaling: new Map(), swapped: new Set() };
 }
 
-/** The parameters with this in the place of what they said of the quantity. */
-export function withMeasured(params: URLSearchParams, state: MeasuredState): URLSearchParams {
+/** The draft that an address holds of a quantity; null without one. */
+export function measuredIn(params: URLSearchParams, quantity: string): MeasuredState | null {
+  const drafts = params.getAll(MEASURED_PARAM).map(readMeasured);
+  return drafts.find((state) => state.quantity === quantity) ?? null;
+}
+
+/** The parameters with this draft in the place of what they said of the quantity; none where it is what is kept. */
+export function withMeasured(
+  params: URLSearchParams,
+  draft: MeasuredState,
+  kept: MeasuredState,
+): URLSearchParams {
   const next = new URLSearchParams(params);
   const others = params
     .getAll(MEASURED_PARAM)
-    .filter((text) => readMeasured(text).quantity !== state.quantity);
+    .filter((text) => readMeasured(text).quantity !== draft.quantity);
   next.delete(MEASURED_PARAM);
   for (const text of others) next.append(MEASURED_PARAM, text);
-  const own = writeMeasured(state);
-  if (own !== null) next.append(MEASURED_PARAM, own);
+  const own = writeMeasured(draft);
+  if (own !== writeMeasured(kept)) next.append(MEASURED_PARAM, own);
   return next;
+}
+
+/** As it is kept with the ensemble; the same state always gives the same record. */
+export function measuredRecord({ quantity, are, values, scaling, swapped }: MeasuredState): MeasuredRecord {
+  return {
+    quantity,
+    are,
+    values: [...values].sort(([a], [b]) => a - b),
+    scaling: [...scaling]
+      .sort(([a], [b]) => a - b)
+      .map(([z, { slope, intercept }]) => ({ z, slope, intercept })),
+    swapped: [...swapped].sort((a, b) => a - b),
+  };
+}
+
+/** A record as it was kept. */
+export function measuredState({ quantity, are, values, scaling, swapped }: MeasuredRecord): MeasuredState {
+  return {
+    quantity,
+    are,
+    values: new Map(values),
+    scaling: new Map(scaling.map(({ z, slope, intercept }) => [z, { slope, intercept }])),
+    swapped: new Set(swapped),
+  };
+}
+
+/** True where nothing is said: such a record is not kept. */
+export function saysNothing({ values, scaling }: Pick<MeasuredRecord, "values" | "scaling">): boolean {
+  return values.length === 0 && scaling.length === 0;
+}
+
+/** Whether the name of a quantity speaks of shieldings. */
+const saysShielding = (quantity: string) => /shield|sigma|σ/i.test(quantity);
+
+/** Whether computed numbers are shieldings, to be scaled to shifts: as somebody said, else as their name says. */
+export function areShieldings(
+  { quantity, are }: Pick<MeasuredState, "quantity" | "are">,
+  unit: string | null,
+): boolean {
+  return unit === "ppm" && (are ?? (saysShielding(quantity) ? "shieldings" : "shifts")) === "shieldings";
 }
 
 const plain = (value: number) => String(Number(value.toFixed(6)));

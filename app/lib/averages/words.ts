@@ -1,4 +1,5 @@
-import { capital, fixed, formatPercent, formatTemperature, pluralWord, withUnit } from "../format.ts";
+import { atomName } from "../chem/elements.ts";
+import { capital, fixed, formatPercent, formatTemperature, plural, pluralWord, withUnit } from "../format.ts";
 import type { Average } from "./average.ts";
 import type { PropertyValues } from "./property-set.ts";
 
@@ -21,6 +22,20 @@ export function digitsFor(unit: string | null, value: number | null): number {
 /** A value of a property with its unit. */
 export function valueWords(property: { unit: string | null }, value: number | null): string {
   return withUnit(fixed(value, digitsFor(property.unit, value)), property.unit ?? "");
+}
+
+/**
+ * What a property is called in a sentence: its own name, or the quantity with the equivalent atoms that it stands for.
+ *
+ * @example propertyName({ name: "shift_H4", quantity: "shift", atoms: [3, 4] }, elements) // "shift of H4, H5"
+ */
+export function propertyName(
+  { name, quantity, atoms }: Pick<PropertyValues, "name" | "quantity" | "atoms">,
+  elements: ArrayLike<number>,
+): string {
+  return quantity === null || atoms === null
+    ? name
+    : `${quantity} of ${atoms.map((atom) => atomName(elements, atom)).join(", ")}`;
 }
 
 export interface AveragesFinding {
@@ -84,7 +99,20 @@ function moverWords({ property, mover }: Told): string | null {
 }
 
 function coverageWords(all: readonly { property: PropertyValues; average: Average }[]): string {
-  const count = `${capital(pluralWord(all.length, "property", "properties"))}${all.length > 1 ? ", each by its own rule" : ""}.`;
+  const scalars = all.filter(({ property }) => property.quantity === null).length;
+  const signals = new Map<string, number>();
+  for (const { property } of all) {
+    if (property.quantity !== null) signals.set(property.quantity, (signals.get(property.quantity) ?? 0) + 1);
+  }
+  const counts = [
+    ...(scalars === 0
+      ? []
+      : [`${pluralWord(scalars, "property", "properties")}${scalars > 1 ? ", each by its own rule" : ""}`]),
+    ...[...signals].map(
+      ([quantity, groups]) => `${quantity} of ${plural(groups, "group")} of equivalent atoms`,
+    ),
+  ];
+  const count = `${capital(counts.join("; "))}.`;
   const partly = all.filter(({ average }) => average.covered < 1 && average.state !== "not-covered");
   const refused = all.filter(({ average }) => average.state === "not-covered");
   const parts = [

@@ -1,3 +1,4 @@
+import type { MeasuredRecord } from "../averages/averaging.ts";
 import type { PropertyValues } from "../averages/property-set.ts";
 import { RULE_WORDS } from "../averages/rule.ts";
 import { CAUTION } from "../export/json.ts";
@@ -13,6 +14,7 @@ import type { EditionContent, EditionPopulations, OpenItem } from "./content.ts"
 import { averagedProperties } from "./counters.ts";
 import { shapeExtent } from "./extent.ts";
 import { editionFindings } from "./findings.ts";
+import { measuredSection, measuredSentences } from "./measured.ts";
 import { methodsText } from "./methods-text.ts";
 import { openItems } from "./open.ts";
 import { editionRows } from "./rows.ts";
@@ -59,6 +61,10 @@ export interface EditionSource {
   outside: readonly OutsideMethod[];
   /** Which frames each search brought; of one alone nothing is kept. */
   searches: readonly SearchView[];
+  /** Groups of equivalent atoms taken apart by hand, atoms from 1; `properties` are merged accordingly. */
+  splits: readonly (readonly (readonly number[])[])[];
+  /** Measured values, as they were entered. */
+  measured: readonly MeasuredRecord[];
 }
 
 /** What is to be drawn for an edition; null where there are no populations or no error. */
@@ -88,6 +94,13 @@ export function buildContent(source: EditionSource, drawn: DrawnUncertainty | nu
   const populations = populationsOf(source);
   const moments = editionMoments(source.properties, result.kept, source.recipe);
   const first = contentVersion === 1;
+  const averages = averagesSection(
+    source.properties,
+    moments,
+    populations,
+    first ? undefined : (drawn?.averages ?? null),
+  );
+  const measured = measuredSection(source.properties, averages, source.ensemble, source.measured);
   const facts = {
     schema: "lowlying-edition" as const,
     version: contentVersion,
@@ -114,16 +127,15 @@ export function buildContent(source: EditionSource, drawn: DrawnUncertainty | nu
     pairsExamined: result.pairsExamined,
     populations,
     columns: source.columns,
-    averages: averagesSection(
-      source.properties,
-      moments,
-      populations,
-      first ? undefined : (drawn?.averages ?? null),
-    ),
+    averages,
     comparisons: comparisonSections(source.columns, source.recipe.levelName, populations),
     sampling: samplingSection(result.kept),
     searches: searchesSection(result, source.searches),
     ...(source.outside.length > 0 ? { outside: [...source.outside] } : {}),
+    ...(source.splits.length > 0
+      ? { splits: source.splits.map((parts) => parts.map((part) => [...part])) }
+      : {}),
+    ...(measured === undefined ? {} : { measured }),
     uncertainty: uncertaintySection(drawn, source.sigmaFrom),
     temperatures: first
       ? null
@@ -227,12 +239,15 @@ function furtherSentences(
     | "averages"
     | "columns"
     | "comparisons"
+    | "ensemble"
     | "kept"
     | "level"
     | "uncertainty"
     | "temperatures"
     | "outside"
     | "searches"
+    | "splits"
+    | "measured"
   >,
 ) {
   const { comparisons, level, uncertainty } = facts;
@@ -243,6 +258,7 @@ function furtherSentences(
       ? null
       : `${plural(averages.length, "property was", "properties were")} averaged over the conformers with these populations ` +
         `(${rules.length === 1 ? "rule" : "rules"}: ${joinWords(rules)}); what covers less than 90 % of the population is not averaged.`,
+    ...measuredSentences(facts),
     comparisons.length === 0
       ? null
       : `${level?.name ?? "The level"} was compared with ${joinWords(comparisons.map(({ reference }) => reference))} ` +

@@ -13,6 +13,7 @@ import { conformerName } from "../workbench/conformers.ts";
 import { joinWords } from "../workbench/findings.ts";
 import { ATOM_SET_WORDS } from "../workbench/recipe-words.ts";
 import type { EditionContent } from "./content.ts";
+import { atomNames } from "./measured.ts";
 
 /** One setting or count that differs, as both editions have it. */
 export interface EditionChange {
@@ -77,6 +78,8 @@ export type Comparable = Pick<
   | "uncertainty"
   | "temperatures"
   | "open"
+  | "splits"
+  | "measured"
 > & { columns: readonly { name: string; sha256: string }[] };
 
 /** Populations nearer than this print alike. */
@@ -98,6 +101,7 @@ export function compareEditions(before: Comparable, after: Comparable): EditionC
     fileWords(before, after),
     ...changes.map((change) => `${change.what}: ${change.after} instead of ${change.before}`),
     ...columnWords(before, after),
+    ...measuredWords(before, after),
     heldWords(before, after),
     populationWords(before, after, conformers),
     averageWords(averages),
@@ -212,7 +216,29 @@ function changesOf(a: Comparable, b: Comparable): EditionChange[] {
     pair("exchange of equivalent atoms", ({ recipe }) => (recipe.symmetry ? "on" : "off")),
     pair("mirror images", ({ recipe }) => (recipe.mirror === "merge" ? "merged" : "kept apart")),
     pair("taken as", ({ recipe }) => recipe.chirality),
+    pair("groups taken apart by hand", ({ splits, ensemble }) =>
+      splits === undefined
+        ? "none"
+        : splits
+            .map((parts) => parts.map((part) => atomNames(ensemble.elements, part)).join(" | "))
+            .join("; "),
+    ),
   ];
+}
+
+/** Of which quantities measured values came, changed or went. */
+function measuredWords(a: Comparable, b: Comparable): string[] {
+  const [before, after] = [a, b].map(
+    ({ measured }) =>
+      new Map((measured ?? []).map(({ quantity, stated }) => [quantity, JSON.stringify(stated)])),
+  );
+  const [was, is] = [before ?? new Map<string, string>(), after ?? new Map<string, string>()];
+  return [...new Set([...is.keys(), ...was.keys()])]
+    .filter((quantity) => was.get(quantity) !== is.get(quantity))
+    .map((quantity) => {
+      const what = !was.has(quantity) ? "added" : is.has(quantity) ? "changed" : "gone";
+      return `measured values of ${quantity} ${what}`;
+    });
 }
 
 function fileWords(a: Comparable, b: Comparable): string | null {

@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { measuredRecordSchema } from "../averages/averaging.ts";
 import { AVERAGE_RULES } from "../averages/rule.ts";
 import { siftRecipeSchema } from "../recipe/recipe.ts";
 
@@ -179,6 +180,62 @@ const outsideSchema = z.object({
   strainLevel: z.string().nullable(),
 });
 
+const lineSchema = z.object({
+  slope: finite,
+  intercept: finite,
+  n: z.number().int(),
+  from: z.enum(["fitted", "typed"]),
+});
+
+/** Averages of a per-atom quantity beside measured values; each nucleus by itself. Atoms count from 1. */
+const measuredSchema = z.object({
+  quantity: z.string(),
+  unit: z.string().nullable(),
+  /** True where shieldings are scaled to shifts before they are compared. */
+  shieldings: z.boolean(),
+  /** As people entered it. */
+  stated: measuredRecordSchema.omit({ quantity: true }),
+  nuclei: z.array(
+    z.object({
+      z: z.number().int(),
+      line: lineSchema.nullable(),
+      agreement: z
+        .object({
+          n: z.number().int(),
+          mae: finite,
+          rmse: finite,
+          max: finite,
+          /** First atom of the group with the largest deviation. */
+          maxAt: z.number().int(),
+          /** Computed = m measured + b, and the mean error once that is taken out; from five values on. */
+          corrected: z.object({ m: finite, b: finite, mae: finite }).nullable(),
+        })
+        .nullable(),
+      groups: z.array(
+        z.object({
+          atoms: z.array(z.number().int()),
+          average: finite.nullable(),
+          computed: finite.nullable(),
+          error: finite.nullable(),
+          /** As it is assigned. */
+          measured: finite.nullable(),
+          difference: finite.nullable(),
+        }),
+      ),
+    }),
+  ),
+  /** Pairs that could be assigned either way: mean errors of the two, and of the whole nucleus, by either. */
+  pairs: z.array(
+    z.object({
+      atoms: z.array(z.number().int()).length(2),
+      z: z.number().int(),
+      chosen: z.enum(["entered", "swapped"]),
+      entered: z.object({ mae: finite, nucleusMae: finite }),
+      swapped: z.object({ mae: finite, nucleusMae: finite }),
+    }),
+  ),
+});
+
 export const editionContentSchema = z.object({
   schema: z.literal("lowlying-edition"),
   /** 1 has no uncertainty, no further temperatures and no list of what was open. */
@@ -253,6 +310,10 @@ export const editionContentSchema = z.object({
   searches: searchesSchema.optional(),
   /** Absent where none lies beside the ensemble. */
   outside: z.array(outsideSchema).optional(),
+  /** Groups of equivalent atoms taken apart by hand, atoms from 1; absent where none is. */
+  splits: z.array(z.array(z.array(z.number().int()))).optional(),
+  /** Absent where nothing was measured. */
+  measured: z.array(measuredSchema).optional(),
   uncertainty: uncertaintySchema.nullable().default(null),
   temperatures: temperaturesSchema.nullable().default(null),
   open: z.array(openItemSchema).default([]),

@@ -1,4 +1,5 @@
 import { averagesCsv } from "../averages/averages-csv.ts";
+import { agreementCsv, besideCsv } from "../averages/measured-csv.ts";
 import { type CsvColumn, writeCsv } from "../export/csv.ts";
 import type { ExportSet } from "../export/export-set.ts";
 import { writeSdf } from "../export/sdf-writer.ts";
@@ -7,6 +8,7 @@ import { ENERGY_UNITS } from "../units.ts";
 import type { EditionContent } from "./content.ts";
 import { contentText } from "./content-text.ts";
 import { editionFigures } from "./figures.ts";
+import { measuredTables } from "./measured.ts";
 import { type FrameEnergy, framesCsv, temperaturesCsv } from "./tables.ts";
 
 /** A file of an edition, in pieces that are made as they are taken. */
@@ -50,6 +52,12 @@ export function editionFiles(
               averagesCsv(content.averages.map((row) => ({ ...row, uncertainty: row.error?.sd ?? null }))),
             ],
           },
+        ]),
+    ...(content.measured === undefined
+      ? []
+      : [
+          { name: "measured.csv", pieces: [besideCsv(measuredTables(content))] },
+          { name: "agreement.csv", pieces: [agreementCsv(measuredTables(content))] },
         ]),
     ...(content.temperatures === null
       ? []
@@ -101,6 +109,8 @@ export const FILE_WORDS: Record<string, { title: string; format: string }> = {
   "distinct-set.sdf": { title: "Distinct set", format: "SDF" },
   "results.csv": { title: "Populations and properties", format: "CSV" },
   "averages.csv": { title: "Averages", format: "CSV" },
+  "measured.csv": { title: "Averages beside measured values", format: "CSV" },
+  "agreement.csv": { title: "Errors against measured values", format: "CSV" },
   "temperatures.csv": { title: "Several temperatures", format: "CSV" },
   "frames.csv": { title: "What became of every frame", format: "CSV" },
   "figure-shapes.svg": { title: "Figure: shapes", format: "SVG" },

@@ -114,6 +114,8 @@ export interface EditionView {
   uncertainty: EditionContent["uncertainty"];
   /** In the order of `averages` and `rows`. */
   temperatures: EditionContent["temperatures"];
+  /** Averages beside measured values; empty where nothing was measured. */
+  measured: NonNullable<EditionContent["measured"]>;
   /** What each search found; null where all frames are of one. */
   searches: NonNullable<EditionContent["searches"]> | null;
   /** What was open when it was frozen. */

@@ -118,6 +118,30 @@ const WRITTEN: [LogbookEntry, string, string | null][] = [
   [{ type: "renamed", data: { before: "A", after: "B" } }, "Renamed to B", "before: A"],
   [{ type: "export", data: { siftId: "a", format: "xyz" } }, "Took the distinct set as XYZ", null],
   [{ type: "export", data: { siftId: "a", format: "averages csv" } }, "Took the averages as CSV", null],
+  [
+    { type: "atoms-split", data: { parts: [["H10", "H11"], ["H12"]] } },
+    "Took equivalent atoms apart: H10, H11 and H12",
+    "Each part is a signal of its own in averages.",
+  ],
+  [
+    { type: "atoms-joined", data: { parts: [["H10", "H11"], ["H12"]] } },
+    "Put equivalent atoms together again: H10, H11 with H12",
+    null,
+  ],
+  [
+    {
+      type: "measured-kept",
+      data: {
+        quantity: "shift",
+        unit: "ppm",
+        count: 9,
+        changes: [{ what: "C1", before: null, after: "77.3" }],
+        more: 2,
+      },
+    },
+    "Kept 9 measured values of shift, ppm",
+    "C1: 77.3 (before: none); and 2 further changes",
+  ],
   [{ type: "sign-in", data: {} }, "Signed in", null],
 ];
 

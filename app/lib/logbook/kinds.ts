@@ -28,7 +28,7 @@ const STARTS: readonly [RegExp, LogbookKind][] = [
   [/^intake$|^batch$|^split-|^reread$/, "intake"],
   [/^answer$/, "answer"],
   [/^hold$|^release/, "held"],
-  [/^column/, "column"],
+  [/^column|^atoms-|^measured-/, "column"],
   [/^remark$/, "remark"],
   [/^series-|^renamed$|^moved$|^deleted$|^restored$/, "ensemble"],
 ];

@@ -6,9 +6,11 @@ import { actorContext, requestIdContext } from "~/context";
 import { readState } from "~/lib/url-state";
 import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
+import { keepMeasured } from "~/services/averages/keep-measured.server";
 import { loadAverages } from "~/services/averages/load-averages.server";
 import { addObservable, observableRequestSchema } from "~/services/averages/observe.server";
 import { setRule } from "~/services/averages/set-rule.server";
+import { joinAtoms, splitAtoms } from "~/services/averages/split-atoms.server";
 import { forPage, notFound, refuseForm } from "~/services/http.server";
 import type { Route } from "./+types/averages";
 
@@ -52,9 +54,25 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
       await addObservable({ actor, ensembleId, request: request.data });
       return { ok: true, done: { intent: "observe" } } satisfies ActAnswer;
     }
+    case "split":
+      await splitAtoms({ actor, ensembleId, parts: readParts(text("parts")) });
+      return { ok: true, done: { intent: "split" } } satisfies ActAnswer;
+    case "join":
+      await joinAtoms({ actor, ensembleId, atom: Number(text("atom")) });
+      return { ok: true, done: { intent: "join" } } satisfies ActAnswer;
+    case "measured": {
+      const asked = { record: text("record"), version: Number(text("version")) };
+      await keepMeasured({ actor, ensembleId, ...asked });
+      return { ok: true, done: { intent: "measured" } } satisfies ActAnswer;
+    }
     default:
       throw notFound();
   }
+}
+
+/** "10,11;12": atoms from 1, a part after the other. */
+function readParts(text: string): number[][] {
+  return text.split(";").map((part) => part.split(",").map(Number));
 }
 
 function readObservable(text: (name: string) => string) {

@@ -6,7 +6,9 @@ import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { frameStrip } from "../ensembles/accepted-frames.server.ts";
 import { findColumns, loadColumn, toLevels } from "../ensembles/find-columns.server.ts";
 import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
+import { unpackMolecule } from "../ensembles/molecule.server.ts";
 import { loadSift } from "../sifts/load-sift.server.ts";
+import { saidView } from "./averaging.server.ts";
 import { findProperties, propertyValues } from "./property-set.server.ts";
 
 /**
@@ -21,14 +23,23 @@ export async function loadAverages(options: {
   properties?: boolean;
 }): Promise<AveragesView> {
   const grant = await accessEnsemble(options.actor, "read", options.ensembleId);
-  const [{ ensemble }, sift, found] = await Promise.all([
+  const [{ ensemble }, sift, found, said] = await Promise.all([
     findEnsembleRow(grant.teamId, grant.ensembleId),
     loadSift(options),
     findProperties(grant.ensembleId),
+    saidView(grant.ensembleId, grant.role !== "guest"),
   ]);
   const kept = sift?.result?.kept ?? null;
   if (sift === null || kept === null)
-    return { siftId: null, properties: [], counters: [], total: found.length, levels: [] };
+    return {
+      siftId: null,
+      properties: [],
+      counters: [],
+      total: found.length,
+      levels: [],
+      said,
+      isotopes: null,
+    };
   const strip = await frameStrip(ensemble.id);
   const all = await findColumns(ensemble.id, strip);
   const counting = new Set(all.filter(({ counter }) => counter).map(({ id }) => id));
@@ -38,7 +49,10 @@ export async function loadAverages(options: {
       ? []
       : averaged.slice(0, Math.max(1, Math.floor(MAX_VALUES / Math.max(1, kept.length))));
   const levels = toLevels(all);
+  const { isotopes } = unpackMolecule(ensemble);
   return {
+    said,
+    isotopes: isotopes.some((mass) => mass !== 0) ? [...isotopes] : null,
     siftId: sift.id,
     properties: await propertyValues(ensemble, kept, carried),
     counters: found.filter(({ id }) => counting.has(id)).map(({ name }) => name),

@@ -1,7 +1,7 @@
 import { and, asc, eq, inArray } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, frames } from "../../db/schema.server.ts";
-import { type AtomColumn, mergeEquivalentAtoms } from "../../lib/averages/atom-groups.ts";
+import { type AtomColumn, mergeEquivalentAtoms, splitClasses } from "../../lib/averages/atom-groups.ts";
 import { ParityGroup } from "../../lib/averages/parity-group.ts";
 import type { PropertyValues } from "../../lib/averages/property-set.ts";
 import { ruleOf } from "../../lib/averages/rule.ts";
@@ -9,6 +9,7 @@ import { packedFrames, unpackColumn } from "../../lib/column-data.ts";
 import type { KeptConformer } from "../../lib/recipe/result.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
 import { unpackMolecule } from "../ensembles/molecule.server.ts";
+import { findSplits } from "./averaging.server.ts";
 
 /** Columns whose numbers are read at once: of 50,000 frames each takes 400 kB. */
 const COLUMNS_AT_ONCE = 16;
@@ -92,14 +93,19 @@ export async function propertyValues(
       });
     }
   }
-  return mergeAtoms(ensemble, kept, properties);
+  return mergeAtoms(ensemble, kept, properties, await findSplits(ensemble.id));
 }
 
-/** Per-atom columns get the mean over their equivalent atoms; each column stays a row of its own. */
+/**
+ * Per-atom columns get the mean over their equivalent atoms; each column stays a row of its own.
+ *
+ * @param splits groups taken apart by hand, atoms from 0
+ */
 export async function mergeAtoms(
   ensemble: EnsembleRow,
   kept: readonly KeptConformer[],
   properties: PropertyValues[],
+  splits: readonly (readonly (readonly number[])[])[],
 ): Promise<PropertyValues[]> {
   const quantities = new Map<string, PropertyValues[]>();
   for (const property of properties) {
@@ -116,7 +122,7 @@ export async function mergeAtoms(
     const atoms = list.map(
       (property): AtomColumn => ({ atom: property.atoms?.[0] ?? 0, values: property.values }),
     );
-    const classes = group.classes(atoms.map((column) => column.atom));
+    const classes = splitClasses(group.classes(atoms.map((column) => column.atom)), splits);
     for (const one of mergeEquivalentAtoms(atoms, classes, relabel)) {
       for (const property of list) {
         if (one.atoms.includes(property.atoms?.[0] ?? -1)) {

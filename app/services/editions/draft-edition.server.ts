@@ -8,7 +8,13 @@ import { deviationFrom } from "../../lib/edition/sections.ts";
 import { findSearches } from "../averages/load-trust.server.ts";
 import { outsideMethodsOf } from "../outside/outside-methods.server.ts";
 import { type FoundSift, readResult } from "../sifts/find-sift.server.ts";
-import { columnRows, contentColumn, describeForEdition, editionSources } from "./edition-source.server.ts";
+import {
+  columnRows,
+  contentColumn,
+  describeForEdition,
+  editionSources,
+  saidForEdition,
+} from "./edition-source.server.ts";
 import { momentItems } from "./moment-items.server.ts";
 import { EDITION_CODE_VERSION, productVersion } from "./product-version.ts";
 
@@ -96,6 +102,7 @@ export async function draftEdition(options: {
     moment: await momentItems(sift),
     outside: await outsideMethodsOf(ensemble, sift, result),
     searches: await findSearches(ensemble.id),
+    ...(await saidForEdition(ensemble.id)),
   };
   const against = heads.find(({ id }) => id === options.error.sigmaFrom);
   const taken = against ? deviationFrom(source.columns, sift.recipe.levelName, against.name) : null;

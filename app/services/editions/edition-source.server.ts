@@ -2,6 +2,7 @@ import { createHash } from "node:crypto";
 import { and, asc, eq, inArray } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, type ensembles, frames } from "../../db/schema.server.ts";
+import type { MeasuredRecord } from "../../lib/averages/averaging.ts";
 import type { PropertyValues } from "../../lib/averages/property-set.ts";
 import { ruleOf } from "../../lib/averages/rule.ts";
 import { unpackColumn } from "../../lib/column-data.ts";
@@ -11,6 +12,7 @@ import type { FrameEnergy } from "../../lib/edition/tables.ts";
 import type { SiftResult } from "../../lib/recipe/result.ts";
 import { bondOrders } from "../../lib/sdf/orders.ts";
 import type { Graph } from "../../lib/structure.ts";
+import { findAveraging } from "../averages/averaging.server.ts";
 import { mergeAtoms } from "../averages/property-set.server.ts";
 import { findFiles } from "../ensembles/load-ensemble.server.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
@@ -212,6 +214,7 @@ export async function editionSource(options: {
   moment: readonly OpenItem[];
   outside: EditionSource["outside"];
   searches: EditionSource["searches"];
+  said: Pick<EditionSource, "splits" | "measured">;
 }): Promise<EditionSource> {
   const { ensemble, described, recipe, result, level, columns: all, frames: collected } = options;
   const own = level && all.find(({ kind, name }) => kind === "energy" && name === level.name);
@@ -238,7 +241,12 @@ export async function editionSource(options: {
     temperature: recipe.temperature,
     weights: recipe.weights,
     columns: options.contentVersion === 1 ? all.map(asFirst) : all,
-    properties: await mergeAtoms(ensemble, result.kept, properties),
+    properties: await mergeAtoms(
+      ensemble,
+      result.kept,
+      properties,
+      options.said.splits.map((parts) => parts.map((part) => part.map((atom) => atom - 1))),
+    ),
     version: options.version,
     contentVersion: options.contentVersion,
     sigma: recipe.sigma,
@@ -248,6 +256,20 @@ export async function editionSource(options: {
     moment: options.moment,
     outside: options.outside,
     searches: options.searches,
+    ...options.said,
+  };
+}
+
+/** Groups taken apart and measured values of an ensemble as an edition freezes them: without who said it. */
+export async function saidForEdition(
+  ensembleId: string,
+): Promise<Pick<EditionSource, "splits" | "measured">> {
+  const { data } = await findAveraging(ensembleId);
+  return {
+    splits: data.splits.map(({ parts }) => parts),
+    measured: data.measured
+      .map(({ by: _by, at: _at, ...record }): MeasuredRecord => record)
+      .sort((a, b) => (a.quantity < b.quantity ? -1 : 1)),
   };
 }
 

@@ -107,6 +107,7 @@ export async function toEditionView(
       populations: content.uncertainty.populations.slice(0, MOST_ROWS),
     },
     temperatures: temperaturesView(content),
+    measured: (content.measured ?? []).filter(({ nuclei }) => nuclei.length > 0),
     searches: content.searches ?? null,
     open: content.open,
     rows: editionRows(content).slice(0, MOST_ROWS),

@@ -44,6 +44,7 @@ import {
   editionSources,
   frameEnergies,
   framesOf,
+  saidForEdition,
 } from "./edition-source.server.ts";
 import { citationFiles, type ManifestInput, manifestFile } from "./manifest.ts";
 import { momentItems } from "./moment-items.server.ts";
@@ -196,6 +197,7 @@ async function prepare(at: At, request: FreezeRequest): Promise<Prepared> {
     moment: await momentItems(sift),
     outside: await outsideMethodsOf(ensemble, sift, result),
     searches: await findSearches(ensemble.id),
+    said: await saidForEdition(ensemble.id),
   });
   const content = await drawContent(source);
   const energies = frameEnergies(level, ensemble.frames, framesOf(result));

@@ -334,6 +334,11 @@ async function recompute(frozen: Frozen, run: JobRun): Promise<VerifiedFile[]> {
     // What lies beside an ensemble is no result: it stands as it was said then.
     outside: edition.content.outside ?? [],
     searches: searchesOf(edition.content),
+    // What people said is no result either: it stands as it was frozen, and what follows from it is computed anew.
+    said: {
+      splits: edition.content.splits ?? [],
+      measured: (edition.content.measured ?? []).map(({ quantity, stated }) => ({ quantity, ...stated })),
+    },
     moment: edition.content.open.filter(({ code }) => MOMENT_CODES.some((one) => one === code)),
   });
   const content = settleWords(await drawContent(source), edition.content);
