@@ -24,6 +24,7 @@ export function hasEnded(status: SiftStatus): boolean {
 
 async function askState(address: string): Promise<SiftState> {
   const response = await fetch(address, { headers: { accept: "application/json" } });
+  if (isAway(response.status)) throw new NoAnswer();
   if (!response.ok) throw new Error(await problemWords(response));
   return (await response.json()) as SiftState;
 }
@@ -82,6 +83,53 @@ export function makeCurrent(ensembleId: string, request: SiftRequest): void {
   }).catch(() => undefined);
 }
 
+async function askForSift(ensembleId: string, request: SiftRequest): Promise<SiftState> {
+  const response = await fetch(`/files/ensembles/${ensembleId}/sifts`, {
+    method: "POST",
+    headers: { "content-type": "application/json", accept: "application/json" },
+    body: JSON.stringify(request),
+  });
+  if (isAway(response.status)) throw new NoAnswer();
+  if (!response.ok) throw new Error(await problemWords(response));
+  return (await response.json()) as SiftState;
+}
+
+/** Thrown where a server stands behind that does not answer now, as during a restart. */
+class NoAnswer extends Error {}
+
+function isAway(status: number): boolean {
+  return status === 502 || status === 503 || status === 504;
+}
+
+/**
+ * Calls until there is an answer, however long the server is away.
+ *
+ * @param wanted false ends it: null, unless the answer is there
+ * @param silent hears whether the last call went unanswered
+ * @throws what the server refuses
+ */
+export async function untilAnswered<T>(
+  call: () => Promise<T>,
+  wanted: () => boolean,
+  silent: (silent: boolean) => void,
+  pause: () => Promise<void> = () => new Promise((on) => setTimeout(on, AGAIN_MS)),
+): Promise<T | null> {
+  while (wanted()) {
+    try {
+      const answer = await call();
+      if (wanted()) silent(false);
+      return answer;
+    } catch (error) {
+      // A browser says "no connection" with a TypeError.
+      if (!(error instanceof TypeError || error instanceof NoAnswer)) throw error;
+      if (!wanted()) return null;
+      silent(true);
+      await pause();
+    }
+  }
+  return null;
+}
+
 export interface Asked {
   id: string;
   progress: number;
@@ -92,11 +140,12 @@ export interface Asked {
 
 /**
  * Asks for sifts with other settings. The newest question counts: an older one still running is cancelled. The result
- * comes as an id; the page then shows that sift.
+ * comes as an id; the page then shows that sift. While the server is away, `silent`, it is asked again and again.
  */
 export function useNewSift(ensembleId: string, onDone: (siftId: string) => void) {
   const [asked, setAsked] = useState<Asked | null>(null);
   const [error, setError] = useState<string | null>(null);
+  const [silent, setSilent] = useState(false);
   const turn = useRef(0);
   const done = useRef(onDone);
   done.current = onDone;
@@ -112,31 +161,31 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
     const before = running.current;
     running.current = null;
     setError(null);
+    // The same recipe is the same sift: asked again after a lost connection it is followed, not computed twice.
+    const again = <T>(call: () => Promise<T>) => untilAnswered(call, () => mine === turn.current, setSilent);
     try {
-      const response = await fetch(`/files/ensembles/${ensembleId}/sifts`, {
-        method: "POST",
-        headers: { "content-type": "application/json", accept: "application/json" },
-        body: JSON.stringify(request),
-      });
-      if (!response.ok) throw new Error(await problemWords(response));
-      let state = (await response.json()) as SiftState;
-      if (before !== null && before !== state.id) drop(before);
+      let state = await again(() => askForSift(ensembleId, request));
+      if (before !== (state?.id ?? running.current)) drop(before);
+      if (state === null) return;
       if (mine !== turn.current) return;
       running.current = state.id;
       setAsked({ id: state.id, progress: state.progress, request });
       while (!hasEnded(state.status)) {
-        state = await askState(`/files/sifts/${state.id}?wait=1`);
-        if (mine !== turn.current) return;
+        const { id } = state;
+        state = await again(() => askState(`/files/sifts/${id}?wait=1`));
+        if (state === null || mine !== turn.current) return;
         setAsked({ id: state.id, progress: state.progress, pairs: state.pairs, request });
       }
       running.current = null;
       setAsked(null);
       if (state.status === "done") done.current(state.id);
-      else if (state.status === "failed") setError(state.error ?? "This sift failed. Ask again.");
+      else if (state.status === "failed") setError(`${state.error ?? "This sift failed."} Ask again.`);
+      else setError("Somebody cancelled this sift. Ask again.");
     } catch (caught) {
       if (mine !== turn.current) return;
       running.current = null;
       setAsked(null);
+      setSilent(false);
       setError(failureWords(caught));
     }
   };
@@ -146,7 +195,8 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
     drop(running.current);
     running.current = null;
     setAsked(null);
+    setSilent(false);
   };
 
-  return { ask, cancel, asked, error, clearError: () => setError(null) };
+  return { ask, cancel, asked, silent, error, clearError: () => setError(null) };
 }

@@ -3,6 +3,7 @@ import { formatEnergy, formatPopulation, formatRmsd, plural, withUnit } from "~/
 import type { ConformerRow } from "~/lib/workbench/conformers";
 import { placeNames } from "~/lib/workbench/place-labels";
 import { ChartFrame } from "./chart-frame";
+import { foundByColumn, foundInNote, type Lit, litNote, PALE } from "./lit";
 import { ChartText, type Choose, Plot, usePlot } from "./plot";
 
 interface Point {
@@ -21,6 +22,7 @@ export function EnergyAgainstRmsd({
   reference,
   top,
   selected,
+  lit = null,
   onChoose,
   note,
 }: {
@@ -31,6 +33,7 @@ export function EnergyAgainstRmsd({
   reference: string;
   top: number;
   selected: ReadonlySet<number>;
+  lit?: Lit | null;
   onChoose: Choose;
   note?: string;
 }) {
@@ -45,11 +48,12 @@ export function EnergyAgainstRmsd({
   const drawn = points.slice(-MOST_POINTS);
   const widest = drawn.reduce((most, point) => Math.max(most, point.rmsd), 0.1);
   const walk = [...drawn].sort((a, b) => a.rmsd - b.rmsd || a.energy - b.energy);
+  const foundBy = foundByColumn(rows);
   return (
     <ChartFrame
       title={`Energy against RMSD to ${reference}`}
       fileName={`energy-against-rmsd-to-${reference}`}
-      note={note}
+      note={[litNote(lit), note].filter(Boolean).join(" ") || undefined}
       data={{
         columns: [
           { name: "conformer" },
@@ -57,6 +61,7 @@ export function EnergyAgainstRmsd({
           { name: `RMSD to ${reference}`, unit: "Å", digits: 3 },
           { name: "relative energy", unit: "kcal/mol", digits: 2 },
           { name: "population", unit: "%", digits: 1 },
+          ...foundBy.head,
         ],
         rows: walk.map(({ row, rmsd: d, energy }) => [
           row.name,
@@ -64,6 +69,7 @@ export function EnergyAgainstRmsd({
           d,
           energy,
           row.population === null ? null : 100 * row.population,
+          ...foundBy.cell(row),
         ]),
       }}
     >
@@ -75,17 +81,25 @@ export function EnergyAgainstRmsd({
           x: d,
           y: energy,
           frame: row.frame,
-          label: `${row.name}, frame ${row.frame}: ${withUnit(formatRmsd(d), "Å")}, ${withUnit(formatEnergy(energy), "kcal/mol")}, ${withUnit(formatPopulation(row.population), "%")}`,
+          label: `${row.name}, frame ${row.frame}: ${withUnit(formatRmsd(d), "Å")}, ${withUnit(formatEnergy(energy), "kcal/mol")}, ${withUnit(formatPopulation(row.population), "%")}${foundInNote(row)}`,
         }))}
         onChoose={onChoose}
       >
-        <PointsLayer drawn={drawn} selected={selected} />
+        <PointsLayer drawn={drawn} selected={selected} lit={lit} />
       </Plot>
     </ChartFrame>
   );
 }
 
-function PointsLayer({ drawn, selected }: { drawn: readonly Point[]; selected: ReadonlySet<number> }) {
+function PointsLayer({
+  drawn,
+  selected,
+  lit,
+}: {
+  drawn: readonly Point[];
+  selected: ReadonlySet<number>;
+  lit: Lit | null;
+}) {
   const plot = usePlot();
   if (!plot) return null;
   const named = drawn
@@ -99,6 +113,7 @@ function PointsLayer({ drawn, selected }: { drawn: readonly Point[]; selected: R
       {drawn.map(({ row, rmsd, energy }) => (
         <circle
           key={row.index}
+          opacity={lit !== null && !lit.rows.has(row.index) ? PALE : undefined}
           cx={plot.x(rmsd)}
           cy={plot.y(energy)}
           r={radius}

@@ -5,6 +5,7 @@ import type { ConformerRow, Outside } from "~/lib/workbench/conformers";
 import { shareFigure, thermalLabel } from "~/lib/workbench/findings";
 import { type Ladder, mergeLabels, type PlacedLabel } from "~/lib/workbench/ladder";
 import { ChartFrame } from "./chart-frame";
+import { foundByColumn, foundInNote, type Lit, litNote, PALE } from "./lit";
 import { ChartText, type Choose, Plot, usePlot } from "./plot";
 
 const BAR = 6;
@@ -20,6 +21,7 @@ export function EnergyLadder({
   windowKcal,
   temperatureK,
   selected,
+  lit = null,
   onChoose,
 }: {
   rows: readonly ConformerRow[];
@@ -28,10 +30,13 @@ export function EnergyLadder({
   windowKcal: number | null;
   temperatureK: number;
   selected: ReadonlySet<number>;
+  lit?: Lit | null;
   onChoose: Choose;
 }) {
   const widest = 100 * ladder.widest * 1.12;
+  const foundBy = foundByColumn(rows);
   const notes = [
+    litNote(lit),
     ladder.above.count > 0
       ? `${plural(ladder.above.count, "conformer")} above ${withUnit(formatEnergy(ladder.top), "kcal/mol")} not drawn, ${shareFigure(ladder.above.share)}.`
       : null,
@@ -52,6 +57,7 @@ export function EnergyLadder({
           { name: "relative energy", unit: "kcal/mol", digits: 2 },
           { name: "population", unit: "%", digits: 1 },
           { name: "weight", digits: 2 },
+          ...foundBy.head,
         ],
         rows: rows.map((row) => [
           row.name,
@@ -59,6 +65,7 @@ export function EnergyLadder({
           row.relativeEnergy,
           row.population === null ? null : 100 * row.population,
           row.weight,
+          ...foundBy.cell(row),
         ]),
       }}
     >
@@ -70,7 +77,7 @@ export function EnergyLadder({
           x: 100 * rung.population,
           y: rung.energy,
           frame: rung.frame,
-          label: `${rung.name}, frame ${rung.frame}: ${withUnit(formatEnergy(rung.energy), "kcal/mol")}, ${withUnit(formatPopulation(rung.population), "%")}`,
+          label: `${rung.name}, frame ${rung.frame}: ${withUnit(formatEnergy(rung.energy), "kcal/mol")}, ${withUnit(formatPopulation(rung.population), "%")}${foundInNote(rows[rung.index] ?? {})}`,
         }))}
         onChoose={onChoose}
       >
@@ -80,6 +87,7 @@ export function EnergyLadder({
           windowKcal={windowKcal}
           temperatureK={temperatureK}
           selected={selected}
+          lit={lit}
         />
       </Plot>
     </ChartFrame>
@@ -92,12 +100,14 @@ function LadderLayer({
   windowKcal,
   temperatureK,
   selected,
+  lit,
 }: {
   ladder: Ladder;
   outside: Outside;
   windowKcal: number | null;
   temperatureK: number;
   selected: ReadonlySet<number>;
+  lit: Lit | null;
 }) {
   const plot = usePlot();
   if (!plot) return null;
@@ -132,6 +142,7 @@ function LadderLayer({
           width={plot.x(100 * rung.population) - plot.left}
           population={rung.population}
           selected={selected.has(rung.frame)}
+          pale={lit !== null && !lit.rows.has(rung.index)}
         />
       ))}
       <path
@@ -244,16 +255,18 @@ function Bar({
   width,
   population,
   selected,
+  pale,
 }: {
   x: number;
   y: number;
   width: number;
   population: number;
   selected: boolean;
+  pale: boolean;
 }) {
   const length = Math.max(0, width);
   return (
-    <>
+    <g opacity={pale ? PALE : undefined}>
       <rect x={x} y={y - BAR / 2} width={length} height={BAR} fill={depthColour(population)} />
       <rect
         x={x + Math.max(0, length - 1.5)}
@@ -262,6 +275,6 @@ function Bar({
         height={BAR + (selected ? 4 : 0)}
         fill={selected ? "var(--color-mark)" : "var(--color-ink)"}
       />
-    </>
+    </g>
   );
 }

@@ -26,10 +26,13 @@ import {
 import type { MeasureKind } from "~/lib/measure/measure";
 import { searchOf, writeState } from "~/lib/url-state";
 import type { ConformerRow } from "~/lib/workbench/conformers";
+import { batchesCell } from "~/lib/workbench/found-by";
 import { type SortColumn, sortRows } from "~/lib/workbench/sort-rows";
 import { toTsv } from "~/lib/workbench/tsv";
+import { FoundBySelect } from "./found-by-select";
 import { PopulationBar } from "./population-bar";
 import { useRowFocus } from "./table-grid";
+import type { FoundByFilter } from "./use-found-by";
 import type { ShapeColumn } from "./use-shape";
 import { useWorkbench } from "./workbench-context";
 
@@ -52,8 +55,11 @@ export interface MeasureColumn {
 export function ConformerTable({
   measure,
   shape = null,
+  foundBy = null,
 }: {
   measure: MeasureColumn | null;
+  /** Which search found what, where there were several. */
+  foundBy?: FoundByFilter | null;
   /** Labels by chosen torsions, which the table can be narrowed to. */
   shape?: ShapeColumn | null;
 }) {
@@ -66,10 +72,17 @@ export function ConformerTable({
   );
   const only = shape?.only ?? null;
   const labels = shape?.labels;
+  const shows = foundBy === null || foundBy.chosen === null ? null : foundBy.shows;
   const narrowed = useMemo(
-    () => (only === null ? rows : rows.filter((row) => labels?.[row.index] === only)),
-    [rows, only, labels],
+    () =>
+      only === null && shows === null
+        ? rows
+        : rows.filter(
+            (row) => (only === null || labels?.[row.index] === only) && (shows === null || shows(row)),
+          ),
+    [rows, only, labels, shows],
   );
+  const narrowedTo = [only, foundBy?.words].filter(Boolean).join(", ");
   const sorted = useMemo(
     () => sortRows(narrowed, state.sort, { rmsd, measure: measure?.values ?? null }),
     [narrowed, state.sort, rmsd, measure],
@@ -128,7 +141,7 @@ export function ConformerTable({
     if (name === "energy" && inFileOrder) return null;
     return now.column === name ? (now.descending ? ("down" as const) : ("up" as const)) : null;
   };
-  const heads = headsOf(measure, reference?.name ?? "c1", level !== null);
+  const heads = headsOf(measure, reference?.name ?? "c1", level !== null, foundBy !== null);
 
   const copy = async () => {
     try {
@@ -148,11 +161,12 @@ export function ConformerTable({
       <BlockHead
         id={id}
         title={
-          only === null
+          narrowedTo === ""
             ? plural(rows.length, "conformer")
-            : `${formatCount(narrowed.length)} of ${plural(rows.length, "conformer")}: ${only}`
+            : `${formatCount(narrowed.length)} of ${plural(rows.length, "conformer")}: ${narrowedTo}`
         }
       >
+        {foundBy ? <FoundBySelect foundBy={foundBy} /> : null}
         {shape ? (
           <FilterSelect
             label={`Shape by ${shape.words}`}
@@ -231,6 +245,7 @@ export function ConformerTable({
                   bound={column?.exact[row.index] === 0 && (rmsd?.[row.index] ?? undefined) !== undefined}
                   measure={measure}
                   shape={labels?.[row.index] ?? null}
+                  batches={foundBy && row.batches ? batchesCell(row.batches, foundBy.of) : null}
                   selected={chosen.has(row.frame)}
                   tabbed={index === active}
                   onFocus={setActive}
@@ -241,7 +256,7 @@ export function ConformerTable({
             {after > 0 ? <Spacer height={after} /> : null}
           </tbody>
           <tfoot className="print:table-row-group">
-            <SumRow rest={rest} rows={narrowed} />
+            <SumRow rest={rest} rows={narrowed} batches={foundBy !== null} />
           </tfoot>
         </Table>
       </div>
@@ -279,7 +294,12 @@ interface Head {
 const WIDE = "max-xl:hidden";
 const MID = "max-sm:hidden";
 
-function headsOf(measure: MeasureColumn | null, reference: string, weighed: boolean): Head[] {
+function headsOf(
+  measure: MeasureColumn | null,
+  reference: string,
+  weighed: boolean,
+  batches: boolean,
+): Head[] {
   const heads: Head[] = [
     { name: "conformer", label: "Conformer", align: "left" },
     { name: "frame", label: "Frame", align: "right", className: MID },
@@ -294,6 +314,17 @@ function headsOf(measure: MeasureColumn | null, reference: string, weighed: bool
     { name: "degeneracy", label: "Degeneracy", align: "right", className: MID },
     { name: "symmetry", label: "Symmetry", unit: "number", align: "right", className: WIDE },
     { name: "found", label: "Found", unit: "times", align: "right", className: MID },
+    ...(batches
+      ? [
+          {
+            name: "batches" as const,
+            label: "Found by",
+            unit: "batch",
+            align: "left" as const,
+            className: MID,
+          },
+        ]
+      : []),
     {
       name: "rmsd",
       label: `RMSD to ${reference}`,
@@ -324,7 +355,7 @@ function Spacer({ height }: { height: number }) {
   return (
     // biome-ignore lint/a11y/noAriaHiddenOnFocusable: it is no control and takes no focus
     <tr aria-hidden="true">
-      <td height={height} colSpan={9} className="p-0" />
+      <td height={height} colSpan={10} className="p-0" />
     </tr>
   );
 }
@@ -338,6 +369,7 @@ const ConformerLine = memo(function ConformerLine({
   bound,
   measure,
   shape,
+  batches,
   selected,
   tabbed,
   onFocus,
@@ -354,6 +386,8 @@ const ConformerLine = memo(function ConformerLine({
   measure: MeasureColumn | null;
   /** Label by chosen torsions. */
   shape: string | null;
+  /** Which batches found it: "1, 2"; null where there was one. */
+  batches: string | null;
   selected: boolean;
   tabbed: boolean;
   onFocus: (index: number) => void;
@@ -419,6 +453,7 @@ const ConformerLine = memo(function ConformerLine({
         <Td align="right" className={MID}>
           <span title={row.foundIn ?? undefined}>{row.found}</span>
         </Td>
+        {batches === null ? null : <Td className={`${MID} whitespace-nowrap`}>{batches}</Td>}
         <Td align="right" className={`${WIDE} noscript:hidden`}>
           {rmsd === undefined && awaited ? <Skeleton className="ml-auto h-3 w-9" /> : rmsdText}
         </Td>
@@ -430,7 +465,7 @@ const ConformerLine = memo(function ConformerLine({
       </Tr>
       {open ? (
         <tr className="border-b border-rule bg-sunk xl:hidden">
-          <td colSpan={9} className="px-4 py-3">
+          <td colSpan={10} className="px-4 py-3">
             <dl className="figures grid grid-cols-[auto_1fr] gap-x-4 gap-y-1 [&_dt]:text-ink-3">
               <dt>frame</dt>
               <dd>{row.frame}</dd>
@@ -471,9 +506,12 @@ const ConformerLine = memo(function ConformerLine({
 const SumRow = memo(function SumRow({
   rest,
   rows,
+  batches,
 }: {
   rest: readonly ConformerRow[];
   rows: readonly ConformerRow[];
+  /** There is a column of them. */
+  batches: boolean;
 }) {
   const over = rest.length > 0 ? rest : rows;
   const share = over.reduce((sum, row) => sum + (row.population ?? 0), 0);
@@ -504,6 +542,7 @@ const SumRow = memo(function SumRow({
       <Td align="right" className={MID}>
         {formatCount(over.reduce((sum, row) => sum + row.found, 0))}
       </Td>
+      {batches ? <Td className={MID} /> : null}
       <Td className={WIDE} colSpan={2} />
     </tr>
   );
@@ -515,6 +554,7 @@ function tableText(
   measure: MeasureColumn | null,
   reference: string,
 ): string {
+  const several = rows.some(({ foundIn }) => foundIn);
   const header = [
     "conformer",
     "frame",
@@ -524,6 +564,7 @@ function tableText(
     "symmetry number",
     "copies",
     "found",
+    ...(several ? ["found by"] : []),
     "RMSD to its mirror image [Å]",
     ...(rmsd ? [`RMSD to ${reference} [Å]`] : []),
     ...(measure ? [`${measure.label} [${measure.kind === "distance" ? "Å" : "°"}]`] : []),
@@ -539,6 +580,7 @@ function tableText(
       row.symmetryNumber,
       row.copies,
       row.found,
+      ...(several ? [row.foundIn ?? null] : []),
       row.mirrorRmsd,
       ...(rmsd ? [rmsd[row.index] ?? null] : []),
       ...(measure ? [measure.values[row.index] ?? null] : []),

@@ -19,6 +19,7 @@ import { PlainSiftForm } from "./plain-forms";
 import { OutdatedNote, SectionState } from "./section-state";
 import { SiftSettings } from "./sift-settings";
 import { ToleranceBlock } from "./tolerance-block";
+import { useFoundBy } from "./use-found-by";
 import { useWorkbench } from "./workbench-context";
 
 /**
@@ -31,6 +32,7 @@ const MOST_ASKED_ON_THE_WAY = 2000;
 export function DistinctSetSection() {
   const { ensemble, sift, result, state, change } = useWorkbench();
   const { search } = useLocation();
+  const foundBy = useFoundBy();
   // One step of history for one gesture: while a thumb is held the later results replace the first.
   const gesture = useRef<"open" | "fresh">("fresh");
   const [before, setBefore] = useState<{
@@ -48,7 +50,7 @@ export function DistinctSetSection() {
   const latest = useRef(change);
   latest.current = change;
   const named = useRef<Promise<void> | null>(null);
-  const { ask, cancel, asked, error, clearError } = useNewSift(ensemble.id, async (id) => {
+  const { ask, cancel, asked, silent, error, clearError } = useNewSift(ensemble.id, async (id) => {
     // The thumb has moved on meanwhile: the answer to where it stands now is on its way.
     if (moved.current !== null && moved.current !== lastAsked.current) return;
     if (sift === null || id === sift.id) {
@@ -118,7 +120,9 @@ export function DistinctSetSection() {
       ) : (
         <>
           <div className={fade} aria-busy={follows}>
-            <Finding more={finding.second}>{finding.text}</Finding>
+            <Finding more={[finding.second, foundBy?.sentence].filter(Boolean).join(" ") || undefined}>
+              {finding.text}
+            </Finding>
           </div>
           {before !== null && before.id !== sift.id ? (
             <p className="mt-1 text-ink-2">
@@ -151,6 +155,7 @@ export function DistinctSetSection() {
           />
           <SiftLine
             asked={asked}
+            silent={silent}
             error={error}
             onCancel={() => {
               cancel();
@@ -188,6 +193,7 @@ export function DistinctSetSection() {
           <div className={fade} aria-busy={follows}>
             <FindFrame />
             <DistinctTable
+              foundBy={foundBy}
               tools={
                 <a
                   className={buttonClass({ size: "sm" })}
@@ -246,10 +252,12 @@ function WideTolerance() {
 /** The sift under way, while the one before stays on the page. The line keeps its height, so that nothing jumps. */
 function SiftLine({
   asked,
+  silent,
   error,
   onCancel,
 }: {
   asked: ReturnType<typeof useNewSift>["asked"];
+  silent: boolean;
   error: string | null;
   onCancel: () => void;
 }) {
@@ -259,6 +267,11 @@ function SiftLine({
       {error ? (
         <p role="alert" className="text-danger">
           {error}
+        </p>
+      ) : silent ? (
+        <p className="flex flex-wrap gap-x-4 text-ink-2">
+          The server does not answer. The new settings stand and are asked for again until it does.
+          <TextButton onClick={onCancel}>Cancel</TextButton>
         </p>
       ) : asked ? (
         <div className="appear-late flex max-w-read items-center gap-4 text-xs text-ink-2">

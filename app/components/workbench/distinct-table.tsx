@@ -23,7 +23,9 @@ import { formatCount, formatEnergy, formatRmsd, plural } from "~/lib/format";
 import type { DroppedFrame } from "~/lib/recipe/result";
 import type { ConformerRow } from "~/lib/workbench/conformers";
 import { repeatsOf } from "~/lib/workbench/repeats";
+import { FoundBySelect } from "./found-by-select";
 import { useRowFocus } from "./table-grid";
+import type { FoundByFilter } from "./use-found-by";
 import { useWorkbench } from "./workbench-context";
 
 const FIRST_ROWS = 12;
@@ -38,8 +40,17 @@ const MID = "max-sm:hidden";
 const NO_REPEATS: DroppedFrame[] = [];
 
 /** Every kept conformer and, opened, the frames that repeat it: nothing was dropped without a reason. */
-export function DistinctTable({ tools }: { tools: ReactNode }) {
-  const { rows, result, selected, select } = useWorkbench();
+export function DistinctTable({
+  tools,
+  foundBy,
+}: {
+  tools: ReactNode;
+  /** Which search found what, where there were several. */
+  foundBy: FoundByFilter | null;
+}) {
+  const { rows: every, result, selected, select } = useWorkbench();
+  const shows = foundBy === null || foundBy.chosen === null ? null : foundBy.shows;
+  const rows = useMemo(() => (shows === null ? every : every.filter(shows)), [every, shows]);
   const id = useId();
   const [all, setAll] = useState(false);
   const [open, setOpen] = useState<ReadonlySet<number>>(new Set());
@@ -98,16 +109,21 @@ export function DistinctTable({ tools }: { tools: ReactNode }) {
   const before = virtualised && first ? first.start : 0;
   const after = virtualised && last ? virtual.getTotalSize() - last.end : 0;
   const dropped = result?.dropped.length ?? 0;
+  const conformers =
+    shows === null
+      ? plural(rows.length, "conformer")
+      : `${formatCount(rows.length)} of ${plural(every.length, "conformer")}: ${foundBy?.words}`;
   return (
     <section aria-labelledby={id} className="mt-9">
       <BlockHead
         id={id}
         title={
-          dropped > 0
-            ? `${plural(rows.length, "conformer")} and ${rows.length === 1 ? "its" : "their"} ${plural(dropped, "repeat")}`
-            : plural(rows.length, "conformer")
+          dropped > 0 && shows === null
+            ? `${conformers} and ${rows.length === 1 ? "its" : "their"} ${plural(dropped, "repeat")}`
+            : conformers
         }
       >
+        {foundBy ? <FoundBySelect foundBy={foundBy} /> : null}
         {tools}
       </BlockHead>
       <div

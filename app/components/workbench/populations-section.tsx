@@ -23,6 +23,7 @@ import { PlainPopulationForm } from "./plain-forms";
 import { PopulationSettings } from "./population-settings";
 import { OutdatedNote, SectionState } from "./section-state";
 import { ThermoFigures } from "./thermo-figures";
+import { type FoundByFilter, useFoundBy } from "./use-found-by";
 import { useShape } from "./use-shape";
 import { MAX_MEASURED, useWorkbench } from "./workbench-context";
 
@@ -30,6 +31,7 @@ import { MAX_MEASURED, useWorkbench } from "./workbench-context";
 export function PopulationsSection() {
   const { rows, result, sift, temperatureK, state, populations, level } = useWorkbench();
   const outside = useMemo(() => outsideWindow(rows), [rows]);
+  const foundBy = useFoundBy();
   const finding = populationsFinding(rows, temperatureK);
   const lines =
     sift && result
@@ -46,7 +48,9 @@ export function PopulationsSection() {
         <SectionState />
       ) : (
         <>
-          <Finding more={[finding.second, ...lines].filter(Boolean).join(" ") || undefined}>
+          <Finding
+            more={[finding.second, ...lines, foundBy?.sentence].filter(Boolean).join(" ") || undefined}
+          >
             {finding.text}
           </Finding>
           <SpreadNote />
@@ -63,10 +67,10 @@ export function PopulationsSection() {
               </p>
               <TemperatureNote />
               <ThermoFigures populations={populations} />
-              <Charts />
+              <Charts foundBy={foundBy} />
             </>
           ) : null}
-          <Table />
+          <Table foundBy={foundBy} />
         </>
       )}
     </section>
@@ -105,7 +109,7 @@ const AgainstRmsd = memo(EnergyAgainstRmsd);
 const Measured = memo(MeasureDistribution);
 
 /** The four figures, drawn when the slider lets them: the numbers above come first. */
-function Charts() {
+function Charts({ foundBy }: { foundBy: FoundByFilter | null }) {
   const workbench = useWorkbench();
   const rows = useDeferredValue(workbench.rows);
   const temperatureK = useDeferredValue(workbench.temperatureK);
@@ -123,6 +127,16 @@ function Charts() {
     () => (column ? Array.from(column.rmsd, (value, k) => (k < column.known ? value : null)) : null),
     [column],
   );
+  // What the table is narrowed to stands out in the figures, too.
+  const shows = foundBy === null || foundBy.chosen === null ? null : foundBy.shows;
+  const words = foundBy?.words ?? null;
+  const lit = useMemo(
+    () =>
+      shows === null || words === null
+        ? null
+        : { rows: new Set(rows.filter(shows).map(({ index }) => index)), words },
+    [rows, shows, words],
+  );
   const choose = useCallback<Choose>(
     (frame, keys) =>
       select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order),
@@ -138,6 +152,7 @@ function Charts() {
         windowKcal={windowKcal}
         temperatureK={temperatureK}
         selected={chosen}
+        lit={lit}
         onChoose={choose}
       />
       <Cumulative cumulative={cumulative} windowKcal={windowKcal} top={ladder.top} />
@@ -149,6 +164,7 @@ function Charts() {
           reference={reference?.name ?? "c1"}
           top={ladder.top}
           selected={chosen}
+          lit={lit}
           onChoose={choose}
           note={
             measured.size < rows.length ? `Of the ${formatCount(MAX_MEASURED)} lowest conformers.` : undefined
@@ -231,10 +247,10 @@ function Distribution({ onChoose }: { onChoose: Choose }) {
   );
 }
 
-function Table() {
+function Table({ foundBy }: { foundBy: FoundByFilter | null }) {
   const measure = useMeasure();
   const shape = useShape();
-  return <ConformerTable measure={measure} shape={shape} />;
+  return <ConformerTable measure={measure} shape={shape} foundBy={foundBy} />;
 }
 
 /** The picked quantity in every conformer whose coordinates are here. */

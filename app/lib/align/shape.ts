@@ -102,7 +102,8 @@ export function distancesExceed(
   tolerance: number,
 ): boolean {
   const n = plan.n;
-  return differ(x, xo + 3 * n + 1, y, yo + 3 * n + 1, n, squareLimit(n, tolerance));
+  const limit = squareLimit(n, tolerance);
+  return gap(x, xo + 3 * n + 1, y, yo + 3 * n + 1, n, limit) > limit;
 }
 
 /** Numbers of a profile: the norm of a shape and its sorted distances, packed for long runs of comparisons. */
@@ -136,8 +137,20 @@ export function profilesExceed(
   yo: number,
   limit: number,
 ): boolean {
+  return profileGap(n, x, xo, y, yo, limit) > limit;
+}
+
+/** The bound behind `profilesExceed`: at most n RMSD^2; above the limit any number above it. */
+export function profileGap(
+  n: number,
+  x: Float64Array,
+  xo: number,
+  y: Float64Array,
+  yo: number,
+  limit: number,
+): number {
   const d = x[xo]! - y[yo]!;
-  return d * d > limit || differ(x, xo + 1, y, yo + 1, n, limit);
+  return d * d > limit ? d * d : gap(x, xo + 1, y, yo + 1, n, limit);
 }
 
 /** n tolerance^2, raised so that rounding never rejects a pair that lies within. */
@@ -145,12 +158,12 @@ export function squareLimit(n: number, tolerance: number): number {
   return n * tolerance * tolerance * (1 + 1e-9) + 1e-18;
 }
 
-function differ(x: Float64Array, i: number, y: Float64Array, j: number, n: number, limit: number): boolean {
+function gap(x: Float64Array, i: number, y: Float64Array, j: number, n: number, limit: number): number {
   let sum = 0;
   for (let k = 0; k < n; k++) {
     const d = x[i + k]! - y[j + k]!;
     sum += d * d;
-    if (sum > limit) return true;
+    if (sum > limit) return sum;
   }
-  return false;
+  return sum;
 }

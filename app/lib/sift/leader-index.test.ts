@@ -1,6 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { profilesExceed, squareLimit } from "../align/shape.ts";
+import { profileGap, profilesExceed, squareLimit } from "../align/shape.ts";
 import { INDEX_DIRECTIONS, LeaderIndex } from "./leader-index.ts";
 import { principalDirections } from "./principal.ts";
 import { ShapeStore } from "./shape-store.ts";
@@ -31,7 +31,11 @@ function indexOf(n: number, rows: Float64Array[], tolerance: number, binsFrom?: 
     index.add(leaders++, row);
     store.push(row);
   };
-  return { add, near: (row: Float64Array, first: number) => index.near(row, first) };
+  return {
+    add,
+    near: (row: Float64Array, first: number) => index.near(row, first),
+    nearestFirst: (row: Float64Array, first: number) => index.nearestFirst(row, first),
+  };
 }
 
 describe("index of leaders", () => {
@@ -49,6 +53,12 @@ describe("index of leaders", () => {
           const fresh = indexOf(n, rows, tolerance / 100, binsFrom);
           for (const other of rows.slice(0, step)) fresh.add(other);
           expect([...fresh.near(row, first)]).toEqual(expected);
+          const byGap = [...fresh.nearestFirst(row, first)];
+          expect(byGap.toSorted((a, b) => a - b)).toEqual(expected);
+          // In groups: none comes before one that is nearer by more than a group is wide.
+          const gaps = byGap.map((k) => profileGap(n, row, 0, rows[k]!, 0, limit));
+          for (const [k, gap] of gaps.entries())
+            expect(Math.max(...gaps.slice(0, k + 1))).toBeLessThanOrEqual(gap + limit / 32);
           expect(index.near(row, 0).length).toBeGreaterThanOrEqual(expected.length);
           index.add(row);
         });

@@ -1,5 +1,5 @@
 import type { SymmetryPlan } from "../align/plan.ts";
-import { profileLength, profilesExceed, writeProfile, writeShape } from "../align/shape.ts";
+import { profileGap, profileLength, writeProfile, writeShape } from "../align/shape.ts";
 import type { FrameBlock } from "../structure.ts";
 import { principalDirections } from "./principal.ts";
 import type { ShapeStore } from "./shape-store.ts";
@@ -13,6 +13,8 @@ const BINS_A_TOLERANCE = 4;
 
 /** Leaders at hand from which on bins pay. */
 const BINS_FROM = 256;
+/** Groups of like gaps that the found are put in order by. */
+const GROUPS = 32;
 /** Frames whose profiles show along which directions the ensemble spreads. */
 const SAMPLE = 64;
 
@@ -67,6 +69,10 @@ export class LeaderIndex {
   private readonly places = new Float64Array(INDEX_DIRECTIONS);
   private found = new Int32Array(64);
   private count = 0;
+  /** How far apart the profiles of those found are, as `profileGap` says; and room to put them in that order. */
+  private gaps = new Float64Array(64);
+  private ordered = new Int32Array(64);
+  private readonly starts = new Int32Array(GROUPS);
 
   /**
    * @param n atoms of a profile
@@ -105,11 +111,34 @@ export class LeaderIndex {
    * @param first never falls from call to call
    */
   near(profile: Float64Array, first: number): Int32Array {
+    this.search(profile, first);
+    const found = this.found.subarray(0, this.count);
+    return this.bins ? found.sort() : found;
+  }
+
+  /** The same in another order: about from the nearest profile on, since a frame mostly repeats one of the nearest. */
+  nearestFirst(profile: Float64Array, first: number): Int32Array {
+    this.search(profile, first);
+    const { count, found, gaps, starts, ordered } = this;
+    const step = GROUPS / this.limit;
+    starts.fill(0);
+    for (let i = 0; i < count; i++) starts[groupOf(gaps[i]! * step)]! += 1;
+    let from = 0;
+    for (let g = 0; g < GROUPS; g++) {
+      const size = starts[g]!;
+      starts[g] = from;
+      from += size;
+    }
+    for (let i = 0; i < count; i++) ordered[starts[groupOf(gaps[i]! * step)]!++] = found[i]!;
+    return ordered.subarray(0, count);
+  }
+
+  private search(profile: Float64Array, first: number): void {
     while (this.from < this.entered && this.leaders[this.from]! < first) this.from += 1;
     this.count = 0;
     if (!this.bins && this.entered - this.from < this.binsFrom) {
       this.lookAtAll(profile);
-      return this.found.subarray(0, this.count);
+      return;
     }
     this.bins ??= this.makeBins();
     this.project(profile, 0);
@@ -119,7 +148,6 @@ export class LeaderIndex {
       const bin = this.bins.get(key);
       if (bin) this.look(bin, profile, first);
     }
-    return this.found.subarray(0, this.count).sort();
   }
 
   private lookAtAll(profile: Float64Array): void {
@@ -127,7 +155,9 @@ export class LeaderIndex {
     this.needRoom(this.entered - this.from);
     for (let i = this.from; i < this.entered; i++) {
       const k = this.leaders[i]!;
-      if (profilesExceed(n, profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit)) continue;
+      const gap = profileGap(n, profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit);
+      if (gap > limit) continue;
+      this.gaps[this.count] = gap;
       this.found[this.count++] = k;
     }
   }
@@ -165,6 +195,10 @@ export class LeaderIndex {
     const larger = new Int32Array(2 * (this.count + more));
     larger.set(this.found);
     this.found = larger;
+    const gaps = new Float64Array(larger.length);
+    gaps.set(this.gaps);
+    this.gaps = gaps;
+    this.ordered = new Int32Array(larger.length);
   }
 
   private project(profile: Float64Array, at: number): void {
@@ -194,8 +228,15 @@ export class LeaderIndex {
       const s = entries[at + 3]! - d;
       if (p * p + q * q + r * r + s * s > square) continue;
       const k = entries[at + INDEX_DIRECTIONS]!;
-      if (profilesExceed(n, profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit)) continue;
+      const gap = profileGap(n, profile, 0, profiles.arrayOf(k), profiles.offsetOf(k), limit);
+      if (gap > limit) continue;
+      this.gaps[this.count] = gap;
       this.found[this.count++] = k;
     }
   }
+}
+
+/** Which of the groups a gap falls into, from its share of the limit times their number. */
+function groupOf(share: number): number {
+  return Math.min(GROUPS - 1, Math.floor(share));
 }

@@ -101,6 +101,47 @@ describe("a counter", () => {
     for (const tolerance of [0.1, 0.105, 0.3, 0.02, 0.1]) expect(count(tolerance)).toBe(single(tolerance));
   });
 
+  it("counts many frames without an energy tolerance, where it takes them by the nearest first", () => {
+    // 36 x 20 shapes, the energies in no order of the torsions: far more leaders than are remembered pair by pair.
+    const torsions = Array.from({ length: 720 }, (_, k) => [
+      10 * (k % 36) - 180,
+      18 * Math.floor(k / 36) - 180,
+    ]);
+    const count = torsions.length;
+    const input = {
+      graph,
+      block: {
+        atoms: 17,
+        count,
+        positions: pack(torsions.flatMap(([a, b]) => alkane(5, [a!, b!])) as number[][]),
+      },
+      numbers: Int32Array.from({ length: count }, (_, k) => k + 1),
+      energies: {
+        values: Float64Array.from({ length: count }, (_, k) => ((k * 283) % count) / 100),
+        present: new Uint8Array(count).fill(1),
+        kcalPerUnit: 1,
+      },
+    };
+    const counter = new ToleranceCounter({ ...input, atoms: "heavy", symmetry: true, mirror: "keep" });
+    const asked: CountQuestion[] = [
+      ...[0.02, 0.15, 0.3, 0.2, 0.6, 0.02].map((tolerance) => ({
+        window: null,
+        energyTolerance: null,
+        rmsdTolerance: tolerance + 1.23e-7,
+      })),
+      { window: null, energyTolerance: 5, rmsdTolerance: 0.15 + 1.23e-7 },
+      { window: 4, energyTolerance: 0.5, rmsdTolerance: 0.3 + 1.23e-7 },
+    ];
+    const kept = asked.map(
+      (question) => runSift({ ...input, recipe: { ...recipe, ...question } }).kept.length,
+    );
+    expect(asked.map((question) => counter.count(question))).toMatchObject(
+      kept.map((one) => ({ kept: one, exact: true })),
+    );
+    expect(kept[0]).toBeGreaterThan(600);
+    expect(kept[4]).toBeLessThan(100);
+  });
+
   it("goes in parts, and a count left alone does not disturb the next", () => {
     const frames = Array.from({ length: 20 }, (_, k) => alkane(5, [9 * k, 180]));
     const counter = new ToleranceCounter({

@@ -14,6 +14,12 @@ const MOST_PAIRS = 1_000_000;
  * slider then need no comparison.
  */
 const AHEAD = 0.05;
+/**
+ * Leaders near one frame, and leaders within the energy tolerance, up to which it pays to remember who is out of reach.
+ * Of more of them a look into the memory costs what a comparison does.
+ */
+const MOST_REMEMBERED = 32;
+const MOST_AT_HAND = 512;
 /** Numbers of all shapes up to which they are kept: 96 MB. */
 const MOST_SHAPE_NUMBERS = 12e6;
 
@@ -49,12 +55,13 @@ export class ToleranceCounter {
   private readonly profiles: Float64Array;
   /** By row * frames + leader's row: the RMSD in Å; below 0, a distance that it is known to exceed. */
   private readonly known = new Map<number, number>();
+  /** Of each row the nearest frame that it was found to repeat, and the last one, with the RMSD in Å; -1: none. */
+  private readonly mates: Int32Array;
+  private readonly mateRmsd: Float64Array;
   private walk: { window: number | null; walk: Walk; directions: () => Float64Array } | null = null;
-  /** Shapes by row, where they are few enough to be kept; else of the frame at hand and of a leader. */
-  private readonly shapes: (Float64Array | undefined)[] = [];
+  /** Shapes of all rows, where they are few enough to be kept; else of the frame at hand and of a leader. */
+  private readonly shapes: Float64Array;
   private readonly keepsShapes: boolean;
-  private readonly frame: Float64Array;
-  private readonly leader: Float64Array;
 
   constructor(private readonly input: CounterInput) {
     const { graph, block, atoms, symmetry } = input;
@@ -62,11 +69,15 @@ export class ToleranceCounter {
     this.comparer = new SymmetricRmsd(plan);
     this.profileSize = profileLength(plan);
     this.profiles = new Float64Array(block.count * this.profileSize);
-    this.frame = new Float64Array(plan.shapeLength);
-    this.leader = new Float64Array(plan.shapeLength);
-    this.keepsShapes = block.count * plan.shapeLength <= MOST_SHAPE_NUMBERS;
+    this.mates = new Int32Array(2 * block.count).fill(-1);
+    this.mateRmsd = new Float64Array(2 * block.count);
+    const size = plan.shapeLength;
+    this.keepsShapes = block.count * size <= MOST_SHAPE_NUMBERS;
+    this.shapes = new Float64Array(this.keepsShapes ? block.count * size : 2 * size);
     for (let row = 0; row < block.count; row++) {
-      writeProfile(plan, this.writeShape(row, this.frame), 0, this.profiles, row * this.profileSize);
+      const at = this.keepsShapes ? row * size : 0;
+      this.writeShape(row, at);
+      writeProfile(plan, this.shapes, at, this.profiles, row * this.profileSize);
     }
   }
 
@@ -92,8 +103,10 @@ export class ToleranceCounter {
     const index = new LeaderIndex(plan.n, directions, profiles, limit);
     return new CountRun(question, walk.rows, energies, index, profiles, {
       profileOf: (row) => this.profiles.subarray(row * this.profileSize, (row + 1) * this.profileSize),
+      mates: this.mates,
+      mateRmsd: this.mateRmsd,
       knownWithin: (row, leader, tolerance) => this.knownWithin(row, leader, tolerance),
-      isWithin: (row, leader, tolerance) => this.isWithin(row, leader, tolerance),
+      isWithin: (row, leader, tolerance, ahead) => this.isWithin(row, leader, tolerance, ahead),
       lastWasCut: () => this.comparer.lastWasCut,
     });
   }
@@ -106,42 +119,59 @@ export class ToleranceCounter {
     return tolerance <= -known ? false : null;
   }
 
-  private isWithin(row: number, leader: number, tolerance: number): boolean {
+  /** @param ahead the distance is found beyond the tolerance too, and remembered either way */
+  private isWithin(row: number, leader: number, tolerance: number, ahead: boolean): boolean {
     const { comparer, input } = this;
     if (comparer.nodes > GENEROUS_NODES) comparer.nodeLimit = FRUGAL_NODE_LIMIT;
-    const reach = tolerance + AHEAD;
-    const x = this.shapeOf(row, this.frame);
-    const y = this.shapeOf(leader, this.leader);
-    const match = comparer.decideNear(x, 0, y, 0, reach, input.mirror === "merge");
-    if (!comparer.lastWasCut) {
+    const reach = ahead ? tolerance + AHEAD : tolerance;
+    const { shapes } = this;
+    const x = this.shapeOf(row, 0);
+    const y = this.shapeOf(leader, 1);
+    const match = comparer.decideNear(shapes, x, shapes, y, reach, input.mirror === "merge");
+    const within = match !== null && match.rmsd <= tolerance;
+    if (comparer.lastWasCut) return within;
+    if (within) this.keepMate(row, leader, match.rmsd);
+    if (ahead) {
       if (this.known.size >= MOST_PAIRS) this.known.clear();
       this.known.set(row * input.block.count + leader, match?.rmsd ?? -reach);
     }
-    return match !== null && match.rmsd <= tolerance;
+    return within;
   }
 
-  /** The shape of a frame; `room` is where it is written when shapes are not kept. */
-  private shapeOf(row: number, room: Float64Array): Float64Array {
-    if (!this.keepsShapes) return this.writeShape(row, room);
-    const kept = this.shapes[row];
-    if (kept !== undefined) return kept;
-    const made = this.writeShape(row, new Float64Array(room.length));
-    this.shapes[row] = made;
-    return made;
+  /** The nearest stays, since it holds at most tolerances; any other one is the last. */
+  private keepMate(row: number, mate: number, rmsd: number): void {
+    const { mates, mateRmsd } = this;
+    const nearest = mates[2 * row]! < 0 || rmsd <= mateRmsd[2 * row]!;
+    if (nearest) {
+      mates[2 * row + 1] = mates[2 * row]!;
+      mateRmsd[2 * row + 1] = mateRmsd[2 * row]!;
+    }
+    mates[2 * row + Number(!nearest)] = mate;
+    mateRmsd[2 * row + Number(!nearest)] = rmsd;
   }
 
-  private writeShape(row: number, shape: Float64Array): Float64Array {
+  /** Where the shape of a frame begins; it is written into the given place when shapes are not kept. */
+  private shapeOf(row: number, place: 0 | 1): number {
+    const size = this.comparer.plan.shapeLength;
+    if (this.keepsShapes) return row * size;
+    this.writeShape(row, place * size);
+    return place * size;
+  }
+
+  private writeShape(row: number, at: number): void {
     const { positions, atoms } = this.input.block;
-    writeShape(this.comparer.plan, positions, row * 3 * atoms, shape, 0);
-    return shape;
+    writeShape(this.comparer.plan, positions, row * 3 * atoms, this.shapes, at);
   }
 }
 
 /** What a count asks of the counter that began it. */
 interface Pairs {
   profileOf(row: number): Float64Array;
+  /** Two of each row; see the counter. */
+  readonly mates: Int32Array;
+  readonly mateRmsd: Float64Array;
   knownWithin(row: number, leader: number, tolerance: number): boolean | null;
-  isWithin(row: number, leader: number, tolerance: number): boolean;
+  isWithin(row: number, leader: number, tolerance: number, ahead: boolean): boolean;
   lastWasCut(): boolean;
 }
 
@@ -149,6 +179,8 @@ interface Pairs {
 export class CountRun {
   /** Rows of the frames that lead. */
   private readonly leaders: number[] = [];
+  /** By row: which leader it is, from 1; 0: none. */
+  private readonly leads: Int32Array;
   /** First leader still within the energy tolerance: rises along the walk. */
   private first = 0;
   private step = 0;
@@ -162,7 +194,9 @@ export class CountRun {
     private readonly index: LeaderIndex,
     private readonly profiles: ShapeStore,
     private readonly pairs: Pairs,
-  ) {}
+  ) {
+    this.leads = new Int32Array(pairs.mates.length / 2);
+  }
 
   get kept(): number {
     return this.leaders.length;
@@ -178,26 +212,50 @@ export class CountRun {
     if (this.step >= this.rows.length) return false;
     const row = this.rows[this.step++]!;
     this.passLeaders(row);
+    if (this.followsMate(row)) return true;
     const profile = this.pairs.profileOf(row);
-    if (this.repeats(row, this.index.near(profile, this.first))) return true;
-    this.index.add(this.leaders.push(row) - 1, profile);
+    if (this.repeats(row, this.index.nearestFirst(profile, this.first))) return true;
+    const number = this.leaders.push(row);
+    this.leads[row] = number;
+    this.index.add(number - 1, profile);
     this.profiles.push(profile);
     return true;
   }
 
-  /** What is known goes first: one leader that the frame repeats is enough. */
+  /** Whether a frame that this one was found to repeat leads here, too, and lies within both tolerances. */
+  private followsMate(row: number): boolean {
+    const { mates, mateRmsd } = this.pairs;
+    for (let at = 2 * row; at < 2 * row + 2; at++) {
+      const mate = mates[at]!;
+      if (mate < 0 || mateRmsd[at]! > this.question.rmsdTolerance) continue;
+      if (this.leads[mate]! > this.first) return true;
+    }
+    return false;
+  }
+
   private repeats(row: number, near: Int32Array): boolean {
     const { pairs, leaders } = this;
+    if (near.length > MOST_REMEMBERED || leaders.length - this.first > MOST_AT_HAND)
+      return this.repeatsAnyOf(row, near);
     const { rmsdTolerance } = this.question;
+    // What is known goes first: one leader that the frame repeats is enough.
     let open = 0;
     for (let i = 0; i < near.length; i++) {
       const known = pairs.knownWithin(row, leaders[near[i]!]!, rmsdTolerance);
       if (known === true) return true;
       if (known === null) near[open++] = near[i]!;
     }
-    // From the nearest in energy: there a frame mostly finds what it repeats.
-    for (let i = open - 1; i >= 0; i--) {
-      if (pairs.isWithin(row, leaders[near[i]!]!, rmsdTolerance)) return true;
+    for (let i = 0; i < open; i++) {
+      if (pairs.isWithin(row, leaders[near[i]!]!, rmsdTolerance, true)) return true;
+      if (pairs.lastWasCut()) this.exact = false;
+    }
+    return false;
+  }
+
+  private repeatsAnyOf(row: number, near: Int32Array): boolean {
+    const { pairs, leaders } = this;
+    for (let i = 0; i < near.length; i++) {
+      if (pairs.isWithin(row, leaders[near[i]!]!, this.question.rmsdTolerance, false)) return true;
       if (pairs.lastWasCut()) this.exact = false;
     }
     return false;

@@ -21,6 +21,8 @@ export interface ConformerRow {
   found: number;
   /** Which search found it how often, in words; null where there was one search. */
   foundIn?: string | null;
+  /** Those searches as batches from 1, in order. */
+  batches?: readonly number[] | null;
   /** Lies above the window that the reader set. */
   outside: boolean;
   /** An RMSD concerned could only be bounded from above. */
@@ -51,6 +53,7 @@ export function conformerRows(
     mirrorRmsd: conformer.mirrorRmsd,
     found: conformer.found,
     foundIn: foundInWords(conformer),
+    batches: conformer.foundIn?.map(({ batch }) => batch) ?? null,
     outside:
       windowKcal !== null && conformer.relativeEnergy !== null && conformer.relativeEnergy > windowKcal,
     upperBound: conformer.upperBound === true,

@@ -10,6 +10,7 @@ export const SORT_COLUMNS = [
   "degeneracy",
   "symmetry",
   "found",
+  "batches",
   "mirror",
   "rmsd",
   "measure",
@@ -45,6 +46,11 @@ export function sortRows(
   });
 }
 
+/** What one batch alone found first, batch by batch; then what two found, and so on. */
+function batchesRank(batches: ConformerRow["batches"]): number | null {
+  return batches ? batches.length + (batches[0] ?? 0) * 1e-6 : null;
+}
+
 function known(value: number | null | undefined): number | null {
   return value === null || value === undefined || Number.isNaN(value) ? null : value;
 }
@@ -65,6 +71,8 @@ function cellOf(row: ConformerRow, column: SortColumn, computed: ComputedColumns
       return row.symmetryNumber;
     case "found":
       return row.found;
+    case "batches":
+      return batchesRank(row.batches);
     case "mirror":
       return row.mirrorRmsd;
     case "rmsd":
