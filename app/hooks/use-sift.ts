@@ -179,8 +179,8 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
       running.current = null;
       setAsked(null);
       if (state.status === "done") done.current(state.id);
-      else if (state.status === "failed") setError(`${state.error ?? "This sift failed."} Ask again.`);
-      else setError("Somebody cancelled this sift. Ask again.");
+      else if (state.status === "failed") setError(state.error ?? "This sift failed.");
+      else setError("Somebody cancelled this sift.");
     } catch (caught) {
       if (mine !== turn.current) return;
       running.current = null;

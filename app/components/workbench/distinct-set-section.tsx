@@ -161,6 +161,15 @@ export function DistinctSetSection() {
               cancel();
               back();
             }}
+            onAgain={() => onAsk(draft ?? lastAsked.current ?? request, true)}
+            onBack={
+              draft === null
+                ? null
+                : () => {
+                    clearError();
+                    back();
+                  }
+            }
           />
           {ensemble.mayCompute ? <PlainSiftForm ensemble={ensemble} request={request} /> : null}
           {answer && answer.message !== undefined ? (
@@ -255,19 +264,30 @@ function SiftLine({
   silent,
   error,
   onCancel,
+  onAgain,
+  onBack,
 }: {
   asked: ReturnType<typeof useNewSift>["asked"];
   silent: boolean;
   error: string | null;
   onCancel: () => void;
+  onAgain: () => void;
+  /** To the settings of the set that is shown; null where they are the same. */
+  onBack: (() => void) | null;
 }) {
   const left = useTimeLeft(asked?.id ?? null, asked?.progress ?? 0);
   return (
     <div className="mt-2 min-h-6" aria-live="polite">
       {error ? (
-        <p role="alert" className="text-danger">
-          {error}
-        </p>
+        <div className="flex flex-wrap items-baseline gap-x-4">
+          <p role="alert" className="text-danger">
+            {error}
+          </p>
+          <TextButton onClick={onAgain}>Ask again</TextButton>
+          {onBack === null ? null : (
+            <TextButton onClick={onBack}>Back to the settings of the set below</TextButton>
+          )}
+        </div>
       ) : silent ? (
         <p className="flex flex-wrap gap-x-4 text-ink-2">
           The server does not answer. The new settings stand and are asked for again until it does.
