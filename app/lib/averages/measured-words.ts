@@ -20,7 +20,8 @@ export function agreementWords(
   const of = (value: number) => withUnit(fixed(value, 2), unit ?? "");
   const { n, mad, rmsd, max, corrected } = agreement;
   const errors = `${plural(n, "value")}: mean absolute error (MAE) ${of(mad)}, root mean square error (RMSE) ${of(rmsd)}, largest ${of(max)} at ${farthest}.`;
-  if (fitted) return errors;
+  if (fitted)
+    return `${errors} The line is fitted to these very values, so that the corrected MAE is the same.`;
   if (corrected === null) {
     return n < FEWEST_FOR_CORRECTION
       ? `${errors} From ${FEWEST_FOR_CORRECTION} values on they are corrected by their line against the measured ones too.`

@@ -1,8 +1,8 @@
 import { citationBibtex, citationCff, citationText } from "../../lib/edition/citation.ts";
 import type { EditionContent } from "../../lib/edition/content.ts";
-import { averagedProperties } from "../../lib/edition/counters.ts";
 import { editionRows } from "../../lib/edition/rows.ts";
 import { shownRows } from "../../lib/edition/shown.ts";
+import { signalRows } from "../../lib/edition/signals.ts";
 import type { EditionShape, EditionView, VerifiedView } from "../../lib/edition/views.ts";
 import { escapeControls } from "../../lib/text/escape.ts";
 import { type FoundEdition, findPositions, type LastVerification } from "./find-edition.server.ts";
@@ -42,14 +42,10 @@ function shapesOf(edition: FoundEdition, positions: Float64Array): EditionShape[
 }
 
 /** Averages at the temperatures of those properties that the page shows, and populations of the rows that it has. */
-function temperaturesView({
-  averages,
-  temperatures,
-  ...content
-}: EditionContent): EditionView["temperatures"] {
+function temperaturesView(content: EditionContent): EditionView["temperatures"] {
+  const { temperatures } = content;
   if (temperatures === null) return null;
-  const shown = averagedProperties({ averages, ...content }) ?? [];
-  const places = shown.map((row) => averages?.indexOf(row) ?? -1);
+  const places = (signalRows(content) ?? []).map(({ place }) => place);
   return {
     ...temperatures,
     populations: temperatures.populations.map((shares) => shares.slice(0, MOST_ROWS)),
@@ -101,7 +97,7 @@ export async function toEditionView(
     methods: content.words.methods.split("\n"),
     caution: content.caution,
     findings: content.findings,
-    averages: averagedProperties(content),
+    averages: signalRows(content)?.map(({ row }) => row) ?? null,
     uncertainty: content.uncertainty && {
       ...content.uncertainty,
       populations: content.uncertainty.populations.slice(0, MOST_ROWS),
