@@ -1,9 +1,10 @@
 import { createHash } from "node:crypto";
-import { existsSync, readFileSync, writeFileSync } from "node:fs";
+import { existsSync, lstatSync, readFileSync, writeFileSync } from "node:fs";
 import path from "node:path";
 import { ROOT, run } from "./processes.mjs";
 
-const STAMP = path.join(ROOT, "node_modules/.lowlying-lock");
+const FOLDER = path.join(ROOT, "node_modules");
+const STAMP = path.join(FOLDER, ".lowlying-lock");
 
 /**
  * Installs the packages of the lock file unless they are in. Development packages too, whatever NODE_ENV says: the
@@ -15,8 +16,13 @@ export async function needPackages(say) {
     .digest("hex");
   const have = existsSync(STAMP) ? readFileSync(STAMP, "utf8") : null;
   if (have === wanted) return;
-  // Packages that somebody installed by hand carry no stamp of ours, but the one of npm.
-  if (have === null && installedByNpm()) return writeFileSync(STAMP, wanted);
+  // Packages that somebody installed by hand carry no stamp of ours, or an old one, but the record of npm.
+  if (installedByNpm()) return writeFileSync(STAMP, wanted);
+  // npm empties the folder first: behind a link that is the folder of another checkout.
+  if (lstatSync(FOLDER, { throwIfNoEntry: false })?.isSymbolicLink())
+    throw new Error(
+      "node_modules is a link to packages of another lock file: remove the link, then start again.",
+    );
   say("Installing the packages of package-lock.json");
   await run("npm", ["ci", "--include=dev", "--no-audit", "--no-fund"], {
     log: path.join(ROOT, ".data/log/npm-ci.log"),
