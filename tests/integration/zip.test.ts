@@ -110,7 +110,7 @@ describe("G09, a zip archive", () => {
       /10,000 files/,
     ],
     ["inside of gzip", gzipSync(zipOf([{ name: "a.xyz", content: butane("-1") }])), /packed twice/],
-  ])("%s is refused, and nothing stays", async (title, content, words) => {
+  ])("%s is refused, and nothing stays (security E02)", async (title, content, words) => {
     const before = await storedRows();
     const response = await upload(token, [{ name: `${title}.zip`, content }], fields);
     expect(response.status).toBe(422);

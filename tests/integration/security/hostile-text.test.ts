@@ -39,6 +39,9 @@ const ACTS = [
   /[\u202a-\u202e\u2066-\u2069]/,
   /1337/, // the template, worked out
 ];
+/** Whatever a browser loads by itself from an address with a host. */
+const ELSEWHERE =
+  /<(?:script|link|img|source|iframe|object|embed|use|image)\b[^>]*\s(?:src|srcset|href|data)="?\s*(?:https?:)?\/\/|url\(["']?(?:https?:)?\/\//i;
 const found = (text: string) => ACTS.filter((act) => act.test(text)).map(String);
 
 let runner: Awaited<ReturnType<typeof withJobs>>;
@@ -113,6 +116,7 @@ describe("hostile text out of files and forms (B05), and what steers a screen (r
     const page = await answer.text();
     expect(answer.status).toBe(200);
     expect(found(page)).toEqual([]);
+    expect(page.match(ELSEWHERE), "loads something of another host (B06)").toBeNull();
     // Not an empty look: the text is there, as text.
     expect(page).toMatch(/alert\(666\)|L &lt;script|E &lt;script|Team /);
   });
@@ -129,6 +133,29 @@ describe("hostile text out of files and forms (B05), and what steers a screen (r
       expect(await answer.text()).not.toMatch(/[\u0000-\u0008\u000b\u000c\u000e-\u001f]/);
     },
   );
+
+  it("is text in figures, which hold no script, link or foreign content (security E09)", async () => {
+    const manifest = await (await call(`/e/${ids.secret}/files/manifest.json`)).text();
+    const figures = [...new Set(manifest.match(/figure-[\w-]+\.svg/g) ?? [])];
+    expect(figures.length).toBeGreaterThan(1);
+    for (const name of figures) {
+      const answer = await call(`/e/${ids.secret}/files/${name}`);
+      expect([answer.status, answer.headers.get("content-disposition")?.slice(0, 10)]).toEqual([
+        200,
+        "attachment",
+      ]);
+      const svg = await answer.text();
+      expect(svg).toMatch(/^<svg\b|^<\?xml/);
+      expect(found(svg), name).toEqual([]);
+      // Text has no angle brackets of its own, so these are the elements with their attributes.
+      const elements = (svg.match(/<[^>]*>/g) ?? [])
+        .join("\n")
+        .replaceAll(' xmlns="http://www.w3.org/2000/svg"', "");
+      expect(elements, name).not.toMatch(
+        /<(?:script|a|foreignObject|image|use|iframe|style|animate|set)\b|\son\w+=|href|https?:/i,
+      );
+    }
+  });
 
   it("is text in mail, HTML part included, and names no compound there", async () => {
     await settleBackground();
