@@ -64,7 +64,7 @@ export function TemperatureTable({ edition }: { edition: EditionView }) {
               </tr>
               {lines.map(({ key, name, unit, values }) => (
                 <Tr key={key} className="figures">
-                  <Td wrap className="[overflow-wrap:anywhere]">
+                  <Td wrap className="hyphens-auto [overflow-wrap:anywhere]">
                     {name}
                     {unit === "" ? null : <span className="block text-xs text-ink-3 sm:hidden">{unit}</span>}
                   </Td>

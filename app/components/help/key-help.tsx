@@ -33,6 +33,7 @@ export function KeyHelp() {
   }, [on]);
   return (
     <Dialog
+      reading
       open={groups !== null}
       onOpenChange={(open) => {
         if (!open) setGroups(null);

@@ -13,6 +13,7 @@ export function Dialog({
   onOpenChange,
   trigger,
   returnTo,
+  reading = false,
   title,
   description,
   children,
@@ -22,6 +23,8 @@ export function Dialog({
   trigger?: ReactNode;
   /** Takes the focus afterwards, where what opened it is no trigger of its own: an entry of a menu. */
   returnTo?: RefObject<HTMLElement | null>;
+  /** Something to read rather than a question: the focus begins at the cross, not at a switch below the text. */
+  reading?: boolean;
   title: ReactNode;
   description?: ReactNode;
   children: ReactNode;
@@ -37,9 +40,9 @@ export function Dialog({
           ref={content}
           onOpenAutoFocus={(event) => {
             // The question's own field comes before the cross that stands above it.
-            const field = content.current?.querySelector<HTMLElement>(
-              "input:not([type=hidden]), select, textarea",
-            );
+            const field = reading
+              ? null
+              : content.current?.querySelector<HTMLElement>("input:not([type=hidden]), select, textarea");
             if (!field) return;
             event.preventDefault();
             field.focus();
