@@ -10,12 +10,13 @@ import { useHovered } from "~/hooks/use-hovered";
 import { useLaidOver } from "~/hooks/use-laid-over";
 import { useSettled } from "~/hooks/use-settled";
 import { perceiveBonds } from "~/lib/chem/bonds";
-import { formatCount, plural } from "~/lib/format";
+import { formatCount, formatRmsd, plural, withUnit } from "~/lib/format";
 import { formatMeasure, measureKind, measureLabel, measureValue } from "~/lib/measure/measure";
 import { makeGraph } from "~/lib/structure";
 import type { EnsembleView, SiftView } from "~/lib/views";
+import { coinciding } from "~/lib/workbench/coincide";
 import { ConformerDistances, laidOver } from "~/lib/workbench/distances";
-import { frameSentence } from "~/lib/workbench/findings";
+import { frameSentence, joinWords } from "~/lib/workbench/findings";
 import { frameName, MAX_COLOURED, type ShownFrame, viewPlan } from "~/lib/workbench/view-plan";
 import { useWorkbench } from "./workbench-context";
 
@@ -54,6 +55,11 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
   const conformers = useMemo(
     () => conformersOf(plan.frames, positions, { ensemble, sift, roles, held, lit }),
     [plan.frames, positions, ensemble, sift, roles, held, lit],
+  );
+
+  const hidden = useMemo(
+    () => (state.mode === "overlay" ? hiddenWords(ensemble, conformers) : null),
+    [state.mode, ensemble, conformers],
   );
 
   const picked = useMemo(
@@ -105,6 +111,7 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
         />
         <AlignChoice picked={picked} align={state.align} onAlign={(align) => change({ align })} />
       </Viewer>
+      {hidden === null ? null : <p className="mt-2 text-xs text-ink-2">{hidden}</p>}
       {error ? (
         <Note tone="danger" className="mt-3">
           {failureWords(error)}{" "}
@@ -166,6 +173,18 @@ function AlignChoice({
       ) : null}
     </div>
   );
+}
+
+/** Structures in atom colours that lie where the first one does are drawn, but cannot be seen. */
+function hiddenWords(ensemble: EnsembleView, conformers: ViewerProps["conformers"]): string | null {
+  const drawn = conformers.filter(({ selected, tone }) => selected && tone !== "held").slice(0, MAX_COLOURED);
+  const [first] = drawn;
+  if (first === undefined || drawn.length < 2) return null;
+  const found = coinciding(makeGraph(Uint8Array.from(ensemble.elements), ensemble.bonds), drawn);
+  if (found.length === 0) return null;
+  const farthest = found.reduce((most, { rmsd }) => Math.max(most, rmsd), 0);
+  const near = withUnit(formatRmsd(farthest), "Å");
+  return `${joinWords(found.map(({ name }) => name))} ${found.length === 1 ? "lies" : "lie"} just where ${first.name} does (heavy atoms, RMSD ${near}${found.length === 1 ? "" : " at most"}): they are seen as one. “Side by side” shows each.`;
 }
 
 function conformersOf(

@@ -175,9 +175,8 @@ export class ToleranceWalk {
     open.fill(2 ** tolerances.length - 1);
     for (let t = tolerances.length - 1; t >= 0; t--) {
       if (this.isSettled(t)) continue;
-      const near = this.indexes[t]!.near(this.profile, widest);
-      // From the nearest in energy: there a frame mostly finds what it repeats.
-      for (let i = near.length - 1; i >= 0 && !this.isSettled(t); i--) this.meet(near[i]!, t, step);
+      const near = this.indexes[t]!.nearestFirst(this.profile, widest);
+      for (let i = 0; i < near.length && !this.isSettled(t); i++) this.meet(near[i]!, t, step);
     }
     if (open.some((set) => set !== 0)) this.lead(row);
   }
