@@ -20,7 +20,7 @@ import { waitForJob } from "~/services/jobs/wait-for-job.server";
 import { freeze, makeSifted, personOf } from "../factories/editions";
 import { freezeFirst } from "../factories/first-edition";
 import { makeMember, tokenOf } from "../factories/people";
-import { makeLab, sifted, withJobs } from "../factories/upload";
+import { formOf, makeLab, reference, sifted, takenIn, withJobs } from "../factories/upload";
 import { call } from "../setup/app";
 
 let runner: Awaited<ReturnType<typeof withJobs>>;
@@ -49,8 +49,8 @@ async function bytesOf(editionId: string, name: string): Promise<Buffer> {
 }
 
 /** Recomputes an edition through the queue, and how it came out. */
-async function verify(made: { id: string; number: number }) {
-  const jobId = await askToVerify({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
+async function verify(made: { id: string; number: number }, ensembleId = at.ensembleId) {
+  const jobId = await askToVerify({ actor: actor(), ensembleId, number: made.number });
   await waitForJob(jobId, 60_000);
   const [job] = await db.select().from(jobs).where(eq(jobs.id, jobId));
   expect(job?.state, job?.error ?? "").toBe("done");
@@ -210,6 +210,40 @@ describe("recompute and verify", () => {
     expect(answer.notes).toEqual([
       "column MMFF94: The column holds other numbers now; those that the edition keeps were taken.",
     ]);
+  });
+
+  it("gives the same bytes of an edition that keeps what each of two searches found", async () => {
+    const lines = reference("ensembles/ac-ala-nhme.xyz").toString("utf8").split("\n");
+    const each = Number(lines[0]) + 2;
+    const part = (from: number, to: number) => `${lines.slice(from * each, to * each).join("\n")}\n`;
+    const fields = { level: "MMFF94", energyUnit: "kcal/mol" };
+    const { id } = await takenIn(lab.token, [{ name: "first.xyz", content: part(0, 40) }], fields);
+    const body = formOf([{ name: "second.xyz", content: part(40, 60) }], fields);
+    const added = await call(`/api/v1/ensembles/${id}/files`, { method: "POST", token: lab.token, body });
+    expect(added.status).toBe(201);
+    const sift = await sifted(lab.token, id, { level: "MMFF94" });
+    const made = await freeze(actor(), { ensembleId: id, siftId: sift.id });
+    const content = JSON.parse((await rowOf(made.id)).content);
+    // Which conformers each search met, counted here by the frames that the sift names.
+    const met = (from: number, to: number) => {
+      const { kept = [], dropped = [] } = sift.result ?? {};
+      const shown = [
+        ...kept.map(({ frame }) => [frame, frame]),
+        ...dropped.map((one) => [one.frame, one.repeats]),
+      ];
+      return new Set(shown.flatMap(([frame = 0, shape]) => (frame > from && frame <= to ? [shape] : [])));
+    };
+    const [first, second] = [met(0, 40), met(40, 60)];
+    const both = [...first].filter((shape) => second.has(shape)).length;
+    expect(both).toBeGreaterThan(0);
+    expect(content.searches?.each).toMatchObject([
+      { name: "first.xyz", ranges: [[1, 40]], frames: 40, found: first.size },
+      { name: "second.xyz", ranges: [[41, 60]], frames: 20, found: second.size },
+    ]);
+    const estimate = ((first.size + 1) * (second.size + 1)) / (both + 1) - 1;
+    expect(content.searches?.pair).toEqual({ first: first.size, second: second.size, both, estimate });
+    expect(content.words.methods).toContain("2 searches were compared by capture and recapture");
+    expect(await verify(made, id)).toMatchObject({ same: true, differing: [], notes: [] });
   });
 
   it("is asked for once however often somebody presses", async () => {
