@@ -1,14 +1,8 @@
-import type { AtomSet } from "~/lib/structure";
-
-export interface DistanceOptions {
-  atoms: AtomSet;
-  symmetry: boolean;
-  mirror: boolean;
-}
+import type { DistanceSettings } from "~/lib/workbench/distances";
 
 /** What the page asks of the thread that measures; `id` counts the sets, so that late answers are known as such. */
 export type DistanceRequest =
-  | { kind: "begin"; id: number; elements: number[]; bonds: number[]; options: DistanceOptions }
+  | { kind: "begin"; id: number; elements: number[]; bonds: number[]; options: DistanceSettings }
   | { kind: "add"; id: number; atoms: number; positions: Float64Array }
   | { kind: "column"; id: number; reference: number };
 

@@ -1,5 +1,6 @@
 import { useEffect, useRef, useState } from "react";
-import type { DistanceAnswer, DistanceOptions, DistanceRequest } from "./distances-protocol";
+import type { DistanceSettings } from "~/lib/workbench/distances";
+import type { DistanceAnswer, DistanceRequest } from "./distances-protocol";
 
 export interface DistanceColumn {
   /** Position of the conformer that distances are taken to. */
@@ -23,7 +24,7 @@ export function useDistances(
     key: string;
     elements: number[];
     bonds: number[];
-    options: DistanceOptions;
+    options: DistanceSettings;
     frames: readonly number[];
   } | null,
   positions: ReadonlyMap<number, Float64Array>,

@@ -25,6 +25,7 @@ import type { ConformerRow } from "~/lib/workbench/conformers";
 import { repeatsOf } from "~/lib/workbench/repeats";
 import { FoundBySelect } from "./found-by-select";
 import { useRowFocus } from "./table-grid";
+import { useExchanged } from "./use-exchanged";
 import type { FoundByFilter } from "./use-found-by";
 import { useWorkbench } from "./workbench-context";
 
@@ -309,7 +310,11 @@ function KeptRow({
               />
             </svg>
           </span>
-          {row.foundIn ? <span className="block text-xs text-ink-3">{row.foundIn}</span> : null}
+          {row.foundIn ? (
+            <span className="block text-xs text-ink-3">
+              {row.batches?.length === 1 ? `batch ${row.batches[0]} only` : row.foundIn}
+            </span>
+          ) : null}
         </Td>
       </Tr>
       {open ? (
@@ -356,6 +361,7 @@ function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly Droppe
   const { show, selected } = useWorkbench();
   const [all, setAll] = useState(false);
   const shown = all ? repeats : repeats.slice(0, FIRST_REPEATS);
+  const exchanged = useExchanged(row.frame, shown);
   return (
     <div className="grid gap-3">
       <p>
@@ -373,6 +379,7 @@ function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly Droppe
               Energy above {row.name}
             </Th>
             <Th>As</Th>
+            {exchanged ? <Th className={MID}>Atoms exchanged</Th> : null}
             <Th>
               <span className="sr-only">View</span>
             </Th>
@@ -384,12 +391,13 @@ function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly Droppe
               <Td align="right">{frame.frame}</Td>
               <Td align="right">
                 {frame.upperBound ? "to " : ""}
-                {formatRmsd(frame.rmsd)}
+                {frame.rmsd < 0.0005 ? "below 0.001" : formatRmsd(frame.rmsd)}
               </Td>
               <Td align="right" className={MID}>
                 {formatEnergy(frame.energyDifference)}
               </Td>
               <Td>{frame.mirror ? "mirror image" : "same hand"}</Td>
+              {exchanged ? <Td className={MID}>{exchanged.get(frame.frame) ?? "…"}</Td> : null}
               <Td align="right">
                 <LayOver
                   frame={frame.frame}

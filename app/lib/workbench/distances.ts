@@ -6,6 +6,14 @@ import type { AtomSet, Graph } from "../structure.ts";
 /** Nodes that one comparison on the page may cost: a column of thousands must not hang on a single pair. */
 const NODE_LIMIT = 20_000;
 
+/** How a recipe compares. */
+export interface DistanceSettings {
+  atoms: AtomSet;
+  symmetry: boolean;
+  /** The mirror image counts too. */
+  mirror: boolean;
+}
+
 export interface Distance {
   /** Å */
   rmsd: number;
@@ -26,7 +34,7 @@ export class ConformerDistances {
   private shapes: Float64Array;
   private count = 0;
 
-  constructor(graph: Graph, options: { atoms: AtomSet; symmetry: boolean; mirror: boolean }) {
+  constructor(graph: Graph, options: DistanceSettings) {
     this.plan = makePlan(graph, options.atoms, { symmetry: options.symmetry });
     this.rmsd = new SymmetricRmsd(this.plan, NODE_LIMIT);
     this.mirror = options.mirror;
