@@ -391,7 +391,7 @@ function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly Droppe
               <Td align="right">{frame.frame}</Td>
               <Td align="right">
                 {frame.upperBound ? "to " : ""}
-                {frame.rmsd < 0.0005 ? "below 0.001" : formatRmsd(frame.rmsd)}
+                {formatRmsd(frame.rmsd)}
               </Td>
               <Td align="right" className={MID}>
                 {formatEnergy(frame.energyDifference)}
