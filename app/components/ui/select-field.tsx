@@ -59,7 +59,7 @@ export function FilterSelect({
     >
       <select
         aria-label={label}
-        className="field-sizing-content h-7 appearance-none truncate rounded-md bg-transparent pr-8 pl-3 max-sm:h-9 pointer-coarse:h-11"
+        className="field-sizing-content h-7 max-w-full appearance-none truncate rounded-md bg-transparent pr-8 pl-3 max-sm:h-9 pointer-coarse:h-11"
         {...select}
       >
         {choices.map((choice) => (

@@ -7,7 +7,7 @@ export function FoundBySelect({ foundBy }: { foundBy: FoundByFilter }) {
     <FilterSelect
       label="Found by which batch"
       active={foundBy.chosen !== null}
-      className="max-w-64 print:hidden noscript:hidden"
+      className="max-w-72 print:hidden noscript:hidden"
       value={foundBy.chosen ?? ""}
       onChange={(event) => foundBy.narrow(event.currentTarget.value || null)}
       choices={[{ value: "", label: "Found by: any batch" }, ...foundBy.choices]}
