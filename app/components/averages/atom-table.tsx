@@ -187,6 +187,19 @@ export function AtomTable({
                           <JoinGroup atom={members[0] ?? 0} name={name} />
                         ) : null}
                       </p>
+                      <p className="figures mt-1 text-ink-2 sm:hidden">
+                        {averaged.temperatures
+                          .map(
+                            (kelvin, k) =>
+                              `${formatTemperature(kelvin)} K ${fixed(one.averages[k]?.value ?? null, digits)}`,
+                          )
+                          .join(", ")}
+                        {unit ? ` ${unit}` : ""}; spread of the shapes {fixed(one.average.spread, digits)}
+                        {mover === null
+                          ? ""
+                          : `; most moved by ${mover.name}, ${signed(mover.change, digits)} without it`}
+                        .
+                      </p>
                       <AtomDetail
                         one={{ ...one, property: { ...one.property, name: `${quantity} of ${name}` } }}
                         averaged={averaged}

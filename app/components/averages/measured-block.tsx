@@ -79,7 +79,8 @@ export function MeasuredBlock({
       <summary className="cursor-pointer text-link print:font-semibold print:text-ink">
         {anything ? `${quantity} beside measured values` : "Set beside measured values"}
       </summary>
-      <div className="mt-3 grid gap-5">
+      {/* On paper a block: a grid that runs over pages lets what follows lie over its last rows. */}
+      <div className="mt-3 grid gap-5 print:block print:*:mt-4">
         {said && !measured.draft ? (
           <p className="figures max-w-read text-ink-2">
             {plural(said.values.length, "measured value")} kept with the ensemble

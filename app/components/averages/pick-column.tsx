@@ -29,7 +29,7 @@ export function PickColumn() {
     picked.length === 2 ? "distance" : picked.length === 3 ? "angle" : picked.length === 4 ? four : null;
   const label = measureLabel(ensemble.elements, picked);
   return (
-    <section className="mt-9" aria-labelledby="pick-column">
+    <section className="mt-9 print:hidden" aria-labelledby="pick-column">
       <BlockHead id="pick-column" title="Measure on the structure" />
       {kind === null ? (
         <p className="max-w-read text-ink-2">

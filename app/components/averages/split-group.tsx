@@ -44,7 +44,7 @@ export function SplitGroup({ atoms, name }: { atoms: readonly number[]; name: st
       onOpenChange={setOpen}
       trigger={<TextButton aria-label={`Split ${name}`}>Split</TextButton>}
       title={`Take ${name} apart`}
-      description="Equivalent atoms share one signal as long as whatever carries them turns faster than the experiment looks. An amide nitrogen or a hindered rotor may be slower: then each part is a signal of its own. Values are taken by the numbers of the file, so that all frames have to number the parts by their place."
+      description="Equivalent atoms share one signal as long as whatever carries them turns faster than the experiment looks. An amide nitrogen or a hindered rotor may be slower: then each part is a signal of its own. Hands at centres are told in every frame; which side of a flat group an atom stands on is taken from the numbers of the file, so that all frames have to number it alike."
     >
       <fetcher.Form method="post" className="grid gap-4">
         <input type="hidden" name="intent" value="split" />

@@ -66,7 +66,7 @@ function steadyNote({ bins }: MeasureHistogram, kind: MeasureKind): string | nul
   if (only === undefined || more.length > 0) return null;
   const digits = kind === "distance" ? 2 : 1;
   const unit = kind === "distance" ? "\u00a0Å" : "°";
-  return `Every conformer lies between ${fixed(only.from, digits)} and ${fixed(only.to, digits)}${unit}: this ${kind} does not vary over the ensemble.`;
+  return `Every conformer lies between ${fixed(only.from, digits)} and ${fixed(only.to, digits)}${unit}: this ${kind} does not vary beyond that over the ensemble.`;
 }
 
 function undefinedNote(share: number): string | null {

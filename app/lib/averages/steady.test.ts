@@ -12,7 +12,7 @@ const words = (rule: AverageRule, values: (number | null)[], paired = false) =>
 
 it("says of an angle that stays where it is that it does not vary, also about 180°", () => {
   expect(words("circular", [179, -179, null])).toMatch(
-    /^All conformers lie within 2° about 180°: it does not vary/,
+    /^All conformers lie within 2° about 180°: beyond that it does not vary/,
   );
   expect(words("circular", [60.1, 60.2])).toMatch(/^It is 60° in every conformer: it does not vary/);
   expect(words("linear", [1.3301, 1.3302])).toContain("It is 1.33\u00a0Å in every conformer");

@@ -41,7 +41,7 @@ export function steadyWords(moments: Moments, unit: string, digits: number): str
   // Wrapped once it is rounded: −179.6° is printed as 180°.
   const turned = circular ? wrapDegrees(middle) : middle;
   const at = of(circular && turned === -180 ? 180 : turned);
-  return `${
-    alike ? `It is ${at} in every conformer` : `All conformers lie within ${of(range)} about ${at}`
-  }: it does not vary over this ensemble, and no population moves it.`;
+  return alike
+    ? `It is ${at} in every conformer: it does not vary over this ensemble, and populations have nothing to move.`
+    : `All conformers lie within ${of(range)} about ${at}: beyond that it does not vary over this ensemble, and populations have little to move.`;
 }

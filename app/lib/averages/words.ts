@@ -89,8 +89,11 @@ function headline(property: PropertyValues, average: Average, temperatureK: numb
     : `${capital(property.name)} averages to ${value} ${at}.`;
 }
 
-function moverWords({ property, mover }: Told): string | null {
+function moverWords({ property, average, mover }: Told): string | null {
   if (mover === null || mover.without === null) return null;
+  if (valueWords(property, mover.without) === valueWords(property, average.value)) {
+    return "No single conformer moves it in the digits shown.";
+  }
   const share =
     mover.share === null
       ? `with ${formatPercent(mover.population)} of the ensemble`
