@@ -188,6 +188,7 @@ export function DistinctSetSection() {
           <MirrorWarning />
           <ToleranceBlock
             draft={draft}
+            failed={error !== null}
             onBack={ensemble.mayCompute ? null : back}
             onTake={
               ensemble.mayCompute

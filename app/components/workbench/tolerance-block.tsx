@@ -35,10 +35,13 @@ function recipeOf(request: SiftRequest, ensemble: EnsembleView): SiftRecipe | nu
  */
 export function ToleranceBlock({
   draft,
+  failed,
   onBack,
   onTake,
 }: {
   draft: SiftRequest | null;
+  /** The set with these settings could not be made. */
+  failed: boolean;
   /** Where the set does not follow the settings: back to those of the set that is shown. */
   onBack: (() => void) | null;
   onTake: ((tolerance: number) => void) | null;
@@ -80,7 +83,14 @@ export function ToleranceBlock({
       : null;
   return (
     <>
-      <LiveLine counted={counted} live={live} isShown={isShown} whole={whole} onBack={onBack} />
+      <LiveLine
+        counted={counted}
+        live={live}
+        isShown={isShown}
+        whole={whole}
+        failed={failed}
+        onBack={onBack}
+      />
       <p className="mt-4 hidden text-xs text-ink-3 noscript:block">
         How the count hangs on the tolerance is counted in the browser and needs script.
       </p>
@@ -161,6 +171,7 @@ function LiveLine({
   live,
   isShown,
   whole,
+  failed,
   onBack,
 }: {
   /** Newest count, perhaps of the settings of a moment ago; null: none yet. */
@@ -168,9 +179,10 @@ function LiveLine({
   live: SiftRecipe;
   isShown: boolean;
   whole: WholeEnsemble;
+  failed: boolean;
   onBack: (() => void) | null;
 }) {
-  const after = onBack === null ? "; the set below follows." : "; the set below stays as it is. ";
+  const after = onBack === null && !failed ? "; the set below follows." : "; the set below stays as it is. ";
   return (
     <p className="figures mt-1 min-h-5 text-ink-2" aria-live="polite">
       {isShown || whole.state !== "ready"

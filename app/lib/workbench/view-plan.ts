@@ -1,4 +1,4 @@
-import { formatRmsd, plural, withUnit } from "../format.ts";
+import { formatCount, formatRmsd, plural, withUnit } from "../format.ts";
 import type { ViewMode } from "../url-state.ts";
 import { byPopulation, type ConformerRow, type FrameRole } from "./conformers.ts";
 import { joinWords } from "./findings.ts";
@@ -95,7 +95,7 @@ export function viewPlan(options: {
     ],
     caption: {
       strong: "Overlay",
-      rest: `of ${others.length + coloured.size === rows.length ? rows.length : `the ${others.length + coloured.size} most populated of ${rows.length}`}, ${options.alignedOn}`,
+      rest: `of ${others.length + coloured.size === rows.length ? formatCount(rows.length) : `the ${formatCount(others.length + coloured.size)} most populated of ${formatCount(rows.length)}`}, ${options.alignedOn}`,
     },
     notDrawn: rows.length - others.length - coloured.size,
   };
