@@ -77,7 +77,10 @@ export function RuleCard({
             <span className="text-right whitespace-nowrap">
               {valueWords(
                 property,
-                averageOf(momentsOf({ rule, values: property.values }, facts), populations).value,
+                averageOf(
+                  momentsOf({ rule, unit: property.unit, values: property.values }, facts),
+                  populations,
+                ).value,
               )}
             </span>
           </QuestionOption>

@@ -56,7 +56,7 @@ export function ValueDistribution({
       digits={digits}
       axis={unit === "" ? property.name : `${property.name}, ${unit}`}
       per={`${fixed(histogram.width, digitsOf(histogram.width))} ${unit}`.trim()}
-      ticks={moments.rule === "circular" ? DEGREE_TICKS : undefined}
+      ticks={moments.rule === "circular" && moments.turn === 360 ? DEGREE_TICKS : undefined}
       headroom={1.28}
       partOf={(index) => ({
         name: conformerName(weighed.places[index] ?? 0),
@@ -95,7 +95,7 @@ function RuleLetters({ rule }: { rule: AverageRule }) {
 }
 
 function digitsOf(width: number): number {
-  return Math.max(0, (String(Number(width.toPrecision(6))).split(".")[1] ?? "").length);
+  return Math.max(0, (String(Number(width.toPrecision(3))).split(".")[1] ?? "").length);
 }
 
 /** What another rule that could be meant would give; null where it is the same or there is none. */
@@ -108,7 +108,10 @@ function otherRule(
   const rule = possibleRules(property).find((one) => one !== moments.rule && one !== "odd" && one !== "r-3");
   if (rule === undefined) return null;
   const facts = { degeneracies: weighed.kept.map((one) => one.degeneracy), mirrorMerged: false };
-  const { value } = averageOf(momentsOf({ rule, values: property.values }, facts), populations);
+  const { value } = averageOf(
+    momentsOf({ rule, unit: property.unit, values: property.values }, facts),
+    populations,
+  );
   return value === null || Math.abs(value - average.value) < 1e-6 * Math.abs(average.value)
     ? null
     : { rule, value };

@@ -260,6 +260,6 @@ describe("every rule", () => {
     );
   });
   it("says of a direction that cancels that it has none", () => {
-    expect(valueBehind("circular", 0.05, 0.05)).toBeNull();
+    expect(valueBehind({ rule: "circular", turn: 360 }, 0.05, 0.05)).toBeNull();
   });
 });

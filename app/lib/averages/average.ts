@@ -1,15 +1,17 @@
 import { LEAST_RESULTANT } from "../measure/circular.ts";
+import { circularDeviation, DEGREES_A_TURN, turnOf } from "./angle.ts";
 import type { AverageRule } from "./rule.ts";
 
 /** Below this share of the population nothing is averaged (our choice; no source). */
 export const LEAST_COVERED = 0.9;
-const DEG = 180 / Math.PI;
 /** Rounding must not refuse exactly 90 %. */
 const SLACK = 1e-12;
 
 /** One quantity over the conformers of a distinct set. */
 export interface Quantity {
   rule: AverageRule;
+  /** As written; says how an angle goes round. Degrees where it is none of an angle. */
+  unit?: string | null;
   /** By position in the set; null is missing, never 0. */
   values: readonly (number | null)[];
 }
@@ -25,7 +27,7 @@ export interface SetFacts {
 export interface Average {
   /** Null where it is not averaged or has no value; `state` says why. */
   value: number | null;
-  /** Of the shapes: standard deviation of the conformers' values about their linear mean; circular: sqrt(-2 ln R), degrees. */
+  /** Of the shapes: standard deviation of the conformers' values about their linear mean; circular: sqrt(-2 ln R) in the unit of the angle. */
   spread: number | null;
   /** Share of the population whose conformers have a value, 0 to 1. */
   covered: number;
@@ -42,6 +44,8 @@ export interface Average {
  */
 export interface Moments {
   rule: AverageRule;
+  /** What one turn is in the unit of the values: 360, 2 pi. Only a circular quantity goes round. */
+  turn: number;
   first: Float64Array;
   /** Sine part of a circular quantity, else null. */
   second: Float64Array | null;
@@ -68,6 +72,7 @@ export function momentsOf(quantity: Quantity, facts: SetFacts): Moments {
   const { rule } = quantity;
   const made: Moments = {
     rule,
+    turn: turnOf(quantity.unit ?? null) ?? DEGREES_A_TURN,
     first: new Float64Array(n),
     second: rule === "circular" ? new Float64Array(n) : null,
     present: new Uint8Array(n),
@@ -105,15 +110,26 @@ function fill(made: Moments, i: number, value: number, bothHands: boolean): void
       if (!(value > 0)) made.zeroDistance = true;
       else made.first[i] = made.rule === "r-6" ? value ** -6 : value ** -3;
       return;
-    case "circular":
-      made.first[i] = Math.cos(value / DEG);
-      if (made.second) made.second[i] = made.mirrored[i] ? 0 : Math.sin(value / DEG);
+    case "circular": {
+      const angle = value / perRadian(made);
+      made.first[i] = Math.cos(angle);
+      if (made.second) made.second[i] = made.mirrored[i] ? 0 : Math.sin(angle);
+    }
   }
 }
 
+/** Units of an angle in one radian. */
+export function perRadian({ turn }: Pick<Moments, "turn">): number {
+  return turn / (2 * Math.PI);
+}
+
 /** The value behind normalised sums; null for an angle whose resultant is below 0.1. */
-export function valueBehind(rule: AverageRule, first: number, second: number): number | null {
-  switch (rule) {
+export function valueBehind(
+  moments: Pick<Moments, "rule" | "turn">,
+  first: number,
+  second: number,
+): number | null {
+  switch (moments.rule) {
     case "linear":
     case "odd":
       return first;
@@ -125,9 +141,9 @@ export function valueBehind(rule: AverageRule, first: number, second: number): n
       return first ** (-1 / 3);
     case "circular": {
       if (Math.hypot(first, second) < LEAST_RESULTANT) return null;
-      const turned = Math.atan2(second, first) * DEG;
-      // Within rounding of -180 is 180: the mean of 170 and -170 must not jump between the two ends.
-      return turned <= -180 + 1e-9 ? 180 : turned;
+      const radians = Math.atan2(second, first);
+      // Within rounding of -180° is 180°: the mean of 170° and -170° must not jump between the two ends.
+      return radians <= -Math.PI + 1e-11 ? moments.turn / 2 : radians * perRadian(moments);
     }
   }
 }
@@ -168,7 +184,7 @@ export function averageOf(moments: Moments, populations: ArrayLike<number>): Ave
   if (covered < LEAST_COVERED - SLACK) return { ...none, state: "not-covered" };
   if (moments.zeroDistance) return { ...none, state: "zero-distance" };
   const [share, first, second] = sums(moments, populations);
-  const value = valueBehind(moments.rule, first / share, second / share);
+  const value = valueBehind(moments, first / share, second / share);
   const circular = moments.rule === "circular";
   const resultant = circular ? Math.min(1, Math.hypot(first, second) / share) : null;
   return {
@@ -179,7 +195,7 @@ export function averageOf(moments: Moments, populations: ArrayLike<number>): Ave
         ? spreadOf(moments, populations, share)
         : value === null
           ? null
-          : circularSpread(resultant),
+          : circularSpread(moments, populations, { share, resultant }),
     covered,
     state: value === null ? "undefined" : "averaged",
     resultant,
@@ -218,6 +234,34 @@ function spreadOf(moments: Moments, populations: ArrayLike<number>, share: numbe
   return Math.sqrt(variance / share);
 }
 
-function circularSpread(resultant: number): number | null {
-  return resultant > 0 ? Math.sqrt(Math.max(0, -2 * Math.log(resultant))) * DEG : null;
+function circularSpread(
+  moments: Moments,
+  populations: ArrayLike<number>,
+  { share, resultant }: { share: number; resultant: number },
+): number | null {
+  const unit = perRadian(moments);
+  const shortOf = () => {
+    const reference = moments.values[moments.present.indexOf(1)]! / unit;
+    let [x, y, short] = [0, 0, 0];
+    const walk = (visit: (angle: number, weight: number) => void) => {
+      for (let i = 0; i < populations.length; i++) {
+        if (moments.present[i] === 0) continue;
+        const paired = moments.mirrored[i] === 1;
+        const [angle, p] = [moments.values[i]! / unit, populations[i]! / share / (paired ? 2 : 1)];
+        visit(angle - reference, p);
+        if (paired) visit(-angle - reference, p);
+      }
+    };
+    walk((angle, p) => {
+      x += p * Math.cos(angle);
+      y += p * Math.sin(angle);
+    });
+    const mean = Math.atan2(y, x);
+    walk((angle, p) => {
+      short += p * 2 * Math.sin((angle - mean) / 2) ** 2;
+    });
+    return short;
+  };
+  const deviation = circularDeviation(resultant, shortOf);
+  return deviation === null ? null : deviation * unit;
 }

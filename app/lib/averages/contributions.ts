@@ -1,5 +1,5 @@
 import { thermalEnergyKcal } from "../units.ts";
-import { type Moments, sums, valueBehind } from "./average.ts";
+import { type Moments, perRadian, sums, valueBehind } from "./average.ts";
 import type { AverageRule } from "./rule.ts";
 
 /** What one conformer does to an average. */
@@ -45,7 +45,7 @@ export function contributionsOf(
       value: moments.values[index]!,
       population: p,
       share: oneSign && first !== 0 ? (populations[index]! * moments.first[index]!) / first : null,
-      without: rest[0] > 0 ? valueBehind(moments.rule, rest[1] / rest[0], rest[2] / rest[0]) : null,
+      without: rest[0] > 0 ? valueBehind(moments, rest[1] / rest[0], rest[2] / rest[0]) : null,
       sensitivity: slope === null ? null : (-p * slope) / rt,
     };
   });
@@ -79,9 +79,9 @@ function slopeOf(moments: Moments, j: number, first: number, second: number): nu
     return Number.isFinite(slope) ? slope : null;
   }
   const square = first * first + second * second;
-  if (valueBehind("circular", first, second) === null) return null;
+  if (valueBehind(moments, first, second) === null) return null;
   const dSine = (moments.second?.[j] ?? 0) - second;
-  return (((first * dSine - second * d) / square) * 180) / Math.PI;
+  return ((first * dSine - second * d) / square) * perRadian(moments);
 }
 
 /**

@@ -30,7 +30,7 @@ export function propertyMoments(
 ): Moments {
   const odd = property.rule === "linear" && mirrorMerged && isPseudoscalar(property.name);
   return momentsOf(
-    { rule: odd ? "odd" : property.rule, values: property.values },
+    { rule: odd ? "odd" : property.rule, unit: property.unit, values: property.values },
     { degeneracies: kept.map((conformer) => conformer.degeneracy), mirrorMerged },
   );
 }

@@ -1,3 +1,6 @@
+import { columnUnit } from "../csv/column-unit.ts";
+import { turnOf } from "./angle.ts";
+
 /** How a quantity is averaged over conformers. */
 export const AVERAGE_RULES = ["linear", "r-6", "r-3", "circular", "rms", "odd"] as const;
 export type AverageRule = (typeof AVERAGE_RULES)[number];
@@ -16,12 +19,12 @@ export const RULE_WORDS: Record<AverageRule, { name: string; when: string }> = {
 };
 
 /**
- * The rule of a column that nobody has said anything about: angles go round, everything else is a plain mean.
+ * The rule of a column that nobody has said anything about: angles in degrees go round, everything else is a plain mean.
  *
  * @example initialRule("°") // "circular"; initialRule("Å") // "linear"
  */
-export function initialRule(unit: string | null): AverageRule {
-  return unit === "°" || unit === "deg" ? "circular" : "linear";
+export function initialRule(unit: string | null): "circular" | "linear" {
+  return unit !== null && columnUnit(unit)?.unit === "°" ? "circular" : "linear";
 }
 
 /** The rule as stored, or that of a column without one. */
@@ -43,7 +46,20 @@ export function isPseudoscalar(name: string): boolean {
 
 /** True for a unit of length, where r^-6 and r^-3 can be meant. */
 export function isLength(unit: string | null): boolean {
-  return unit !== null && ["Å", "A", "angstrom", "Angstrom", "nm", "pm", "bohr"].includes(unit);
+  return unit !== null && columnUnit(unit)?.family === "length";
+}
+
+/**
+ * What a rule averages, where a unit says that the column is none of it; null where the rule may be meant. A column without
+ * a unit may be either: its numbers are then degrees, or distances.
+ *
+ * @example ruleAgainstUnit("circular", "Å") // "an angle in °, rad or mrad"
+ */
+export function ruleAgainstUnit(rule: AverageRule, unit: string | null): string | null {
+  if (unit === null || unit === "") return null;
+  if (rule === "circular" && turnOf(unit) === null) return "an angle in °, rad or mrad";
+  if ((rule === "r-6" || rule === "r-3") && !isLength(unit)) return "a distance in Å, nm, pm or bohr";
+  return null;
 }
 
 /**
@@ -53,7 +69,7 @@ export function isLength(unit: string | null): boolean {
  */
 export function possibleRules(column: { name: string; unit: string | null }): AverageRule[] {
   if (isPseudoscalar(column.name)) return ["odd", "linear"];
-  if (initialRule(column.unit) === "circular") return ["circular", "linear"];
+  if (turnOf(column.unit) !== null) return ["circular", "linear"];
   if (isLength(column.unit)) {
     return /gyration|largest|\brg\b/i.test(column.name.replaceAll("_", " "))
       ? ["linear", "r-6", "r-3"]

@@ -1,9 +1,9 @@
 import { fixed } from "../format.ts";
-import { wrapDegrees } from "../measure/geometry.ts";
+import { wrapTurn } from "./angle.ts";
 import type { Moments } from "./average.ts";
 
-/** An angle that runs round counts as one shape within this: a bar of its distribution. */
-const STEADY_DEG = 15;
+/** An angle that runs round counts as one shape within this part of a turn (15°): a bar of its distribution. */
+const STEADY_TURN = 1 / 24;
 
 /**
  * Says that a quantity does not vary over the ensemble, where its distribution would be one block without a word: values
@@ -11,7 +11,7 @@ const STEADY_DEG = 15;
  *
  * @param digits decimals that the quantity is printed with
  * @returns null where it varies, or where fewer than two conformers have a value
- * @example steadyWords(momentsOf({ rule: "circular", values: [179, -178] }, facts), "°", 0) // "... within 3°, ..."
+ * @example steadyWords(momentsOf({ rule: "circular", values: [179, -179] }, facts), "°", 0) // "All conformers lie within 2° about 180°..."
  */
 export function steadyWords(moments: Moments, unit: string, digits: number): string | null {
   const circular = moments.rule === "circular";
@@ -28,7 +28,7 @@ export function steadyWords(moments: Moments, unit: string, digits: number): str
   let low = 0;
   let high = 0;
   for (const value of values) {
-    const away = circular ? wrapDegrees(value - first) : value - first;
+    const away = circular ? wrapTurn(value - first, moments.turn) : value - first;
     low = Math.min(low, away);
     high = Math.max(high, away);
   }
@@ -36,11 +36,10 @@ export function steadyWords(moments: Moments, unit: string, digits: number): str
   const of = (value: number, more = digits) =>
     `${fixed(value, more)}${unit === "" ? "" : unit === "°" ? "°" : `\u00a0${unit}`}`;
   const alike = range < 0.5 * 10 ** -digits;
-  if (!alike && !(circular && range <= STEADY_DEG)) return null;
+  if (!alike && !(circular && range <= STEADY_TURN * moments.turn)) return null;
   const middle = Number((first + (low + high) / 2).toFixed(digits));
   // Wrapped once it is rounded: −179.6° is printed as 180°.
-  const turned = circular ? wrapDegrees(middle) : middle;
-  const at = of(circular && turned === -180 ? 180 : turned);
+  const at = of(circular ? wrapTurn(middle, moments.turn) : middle);
   return alike
     ? `It is ${at} in every conformer: it does not vary over this ensemble, and populations have nothing to move.`
     : `All conformers lie within ${of(range)} about ${at}: beyond that it does not vary over this ensemble, and populations have little to move.`;

@@ -1,5 +1,6 @@
 import type { BinPart } from "../measure/histogram.ts";
 import { roundTicks } from "../workbench/ticks.ts";
+import { wrapTurn } from "./angle.ts";
 import type { Moments } from "./average.ts";
 
 export interface ValueHistogram {
@@ -13,21 +14,27 @@ const BINS = 16;
 
 /**
  * Distribution of a quantity over conformers by population, in bins of a round width, each with its lower bound. Values
- * that stand for both hands enter half at each sign. Angles run from -180 to 180 in steps of 15, closed above.
+ * that stand for both hands enter half at each sign. Angles run from minus to plus half a turn in 24 steps (of 15°), closed above.
  *
  * @returns null where no conformer has a value
  */
 export function valueHistogram(moments: Moments, populations: ArrayLike<number>): ValueHistogram | null {
+  const circular = moments.rule === "circular";
   const entries: { index: number; value: number; share: number }[] = [];
   for (let i = 0; i < populations.length; i++) {
     if (moments.present[i] === 0) continue;
-    const value = moments.rule === "circular" ? wrapped(moments.values[i]!) : moments.values[i]!;
+    const value = circular ? wrapTurn(moments.values[i]!, moments.turn) : moments.values[i]!;
     const paired = moments.mirrored[i] === 1;
     entries.push({ index: i, value, share: populations[i]! / (paired ? 2 : 1) });
-    if (paired) entries.push({ index: i, value: value === 180 ? 180 : -value, share: populations[i]! / 2 });
+    if (paired)
+      entries.push({
+        index: i,
+        value: circular && value === moments.turn / 2 ? value : -value,
+        share: populations[i]! / 2,
+      });
   }
   if (entries.length === 0) return null;
-  const edges = moments.rule === "circular" ? angleEdges() : roundEdges(entries.map((entry) => entry.value));
+  const edges = circular ? angleEdges(moments.turn) : roundEdges(entries.map((entry) => entry.value));
   const bins = edges.slice(1).map((to, b): ValueHistogram["bins"][number] => ({
     from: edges[b]!,
     to,
@@ -35,7 +42,7 @@ export function valueHistogram(moments: Moments, populations: ArrayLike<number>)
     parts: [],
   }));
   for (const { index, value, share } of entries) {
-    const bin = bins[placeOf(edges, value, moments.rule === "circular")]!;
+    const bin = bins[placeOf(edges, value, circular)]!;
     bin.share += share;
     const known = bin.parts.find((part) => part.index === index);
     if (known) known.share += share;
@@ -45,13 +52,8 @@ export function valueHistogram(moments: Moments, populations: ArrayLike<number>)
   return { bins, width: edges[1]! - edges[0]! };
 }
 
-function wrapped(degrees: number): number {
-  const turned = ((degrees % 360) + 360) % 360;
-  return turned > 180 ? turned - 360 : turned;
-}
-
-function angleEdges(): number[] {
-  return Array.from({ length: 25 }, (_, b) => -180 + 15 * b);
+function angleEdges(turn: number): number[] {
+  return Array.from({ length: 25 }, (_, b) => (turn * (b - 12)) / 24);
 }
 
 function roundEdges(values: readonly number[]): number[] {

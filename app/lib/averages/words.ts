@@ -1,5 +1,6 @@
 import { atomName } from "../chem/elements.ts";
 import { capital, fixed, formatPercent, formatTemperature, plural, pluralWord, withUnit } from "../format.ts";
+import { turnOf } from "./angle.ts";
 import type { Average } from "./average.ts";
 import type { PropertyValues } from "./property-set.ts";
 
@@ -9,7 +10,8 @@ import type { PropertyValues } from "./property-set.ts";
  * @example digitsFor("°", 179.6) // 0; digitsFor("ppm", 127.37) // 2; digitsFor(null, 0.0123) // 4
  */
 export function digitsFor(unit: string | null, value: number | null): number {
-  if (unit === "°" || unit === "deg") return 0;
+  const turn = turnOf(unit);
+  if (turn !== null) return turn < 10 ? 3 : 0;
   if (unit === "Å" || unit === "Hz" || unit === "ppm" || unit === "D")
     return unit === "Å" && (value ?? 9) < 1 ? 3 : 2;
   const size = Math.abs(value ?? 1);

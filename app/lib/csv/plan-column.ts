@@ -1,3 +1,4 @@
+import { initialRule, ruleAgainstUnit } from "../averages/rule.ts";
 import { symbolOf } from "../chem/elements.ts";
 import type { ColumnData } from "../column-data.ts";
 import { IntakeRejection } from "../intake/reject.ts";
@@ -79,7 +80,6 @@ export interface DraftColumn extends Omit<PlannedColumn, "data" | "count" | "dec
 }
 
 const MAX_NAME = 120;
-const ANGLES = new Set(["°", "rad"]);
 
 function cut(text: string): string {
   return [...text].slice(0, MAX_NAME).join("");
@@ -265,10 +265,8 @@ function settleProperty(
   context: PlanContext,
 ): void {
   draft.unit = unit.text === null ? null : [...unit.text].slice(0, 40).join("");
-  const isAngle = ANGLES.has(unit.known?.unit ?? "");
-  const startsCircular = unit.known?.unit === "°";
-  draft.rule = choice?.rule ?? answers.rule ?? (startsCircular ? "circular" : "linear");
-  checkRule(draft, unit.known, isAngle, choice?.rule !== undefined ? "columns" : "rule");
+  draft.rule = choice?.rule ?? answers.rule ?? initialRule(draft.unit);
+  checkRule(draft, choice?.rule !== undefined ? "columns" : "rule", context);
   if (unit.text !== null && unit.known === null) {
     draft.messages.push({
       code: "C06",
@@ -282,19 +280,35 @@ function settleProperty(
   bindAtom(draft, unit.known, answers, choice, context);
 }
 
-function checkRule(draft: DraftColumn, unit: KnownUnit | null, isAngle: boolean, field: string): void {
-  const { rule } = draft;
-  const wrong =
-    rule === "circular"
-      ? unit !== null && !isAngle && "an angle in ° or rad"
-      : (rule === "r-6" || rule === "r-3") && unit !== null && unit.family !== "length" && "a distance";
-  if (!wrong) return;
+/** Refuses a rule that the unit speaks against; says how the numbers of an angle without a unit are taken. */
+function checkRule(draft: DraftColumn, field: string, context: PlanContext): void {
+  const { rule, raw } = draft;
+  if (rule === null) return;
+  if (rule === "circular" && draft.unit === null) {
+    const { values, present } = raw;
+    const small = values.every((value, k) => present[k] !== 1 || Math.abs(value) <= 2 * Math.PI + 1e-6);
+    draft.messages.push({
+      code: "C06",
+      severity: "remark",
+      file: context.file,
+      line: context.headerLine,
+      found: quoteFound(draft.header),
+      message: `"${quoteFound(draft.name)}" has no unit; it is averaged as an angle in degrees.${small ? " No value goes beyond 6.29: are they radians?" : ""}`,
+      hint: "Write name [°], name [rad] or name [mrad] to state it.",
+    });
+  }
+  const wrong = ruleAgainstUnit(rule, draft.unit);
+  if (wrong === null) return;
   draft.questions.push({
     id: field,
     code: "rule",
     text: `Which rule averages "${quoteFound(draft.name)}"?`,
-    reason: `${rule} averages ${wrong}; "${quoteFound(draft.header)}" is in ${draft.unit}.`,
-    options: RULES.map((id) => ({ id, text: id, proposed: id === "linear" })),
+    reason: `${rule} averages ${wrong}; "${quoteFound(draft.header)}" is in ${draft.unit}. Where that unit is wrong, write the right one as name [unit].`,
+    options: RULES.filter((id) => ruleAgainstUnit(id, draft.unit) === null).map((id) => ({
+      id,
+      text: id,
+      proposed: id === "linear",
+    })),
   });
 }
 

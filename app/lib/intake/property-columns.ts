@@ -1,3 +1,4 @@
+import { initialRule } from "../averages/rule.ts";
 import { inWords } from "../chem/chirality.ts";
 import type { ColumnData } from "../column-data.ts";
 import { quoteFound } from "../text/escape.ts";
@@ -72,7 +73,7 @@ function toColumn(candidate: EnergyCandidate, name: string, frames: number): New
     kindStated: false,
     temperature: null,
     unit,
-    rule: unit === "°" || unit === "deg" ? "circular" : "linear",
+    rule: initialRule(unit),
     origin: candidate.from,
     count: candidate.column.count,
     data: byFrame(candidate.column, frames),

@@ -1,7 +1,7 @@
 import { and, eq } from "drizzle-orm";
 import { inTransaction } from "../../db/client.server.ts";
 import { columns } from "../../db/schema.server.ts";
-import { AVERAGE_RULES, type AverageRule, ruleOf } from "../../lib/averages/rule.ts";
+import { AVERAGE_RULES, type AverageRule, ruleAgainstUnit, ruleOf } from "../../lib/averages/rule.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { recomputeDerived } from "../columns/recompute-derived.server.ts";
@@ -43,6 +43,13 @@ export async function setRule(options: {
       );
     const column = rows[0];
     if (column === undefined) throw notFound();
+    const against = ruleAgainstUnit(rule, column.unit);
+    if (against !== null) {
+      const message = `The rule ${rule} averages ${against}; "${column.name}" is in ${column.unit}.`;
+      throw new DomainError("invalid", "The rule does not fit", message, {
+        faults: [{ field: "rule", message }],
+      });
+    }
     const before: AverageRule = ruleOf(column);
     if (before === rule) return;
     await tx.update(columns).set({ rule }).where(eq(columns.id, options.columnId));

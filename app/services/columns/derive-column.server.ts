@@ -3,6 +3,7 @@ import { z } from "zod";
 import { db, inTransaction, type Queryable } from "../../db/client.server.ts";
 import { columns } from "../../db/schema.server.ts";
 import { ENERGY_KINDS } from "../../lib/api/schemas.ts";
+import { initialRule } from "../../lib/averages/rule.ts";
 import { unpackColumn } from "../../lib/column-data.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { plural } from "../../lib/format.ts";
@@ -138,6 +139,7 @@ export async function deriveColumn(options: {
         name: request.name,
         kind: formula.kind,
         unit: formula.unit,
+        rule: initialRule(formula.unit),
         data,
         origin: "expression",
         energyKind: request.energyKind ?? formula.energyKind,

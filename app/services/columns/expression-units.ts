@@ -56,6 +56,7 @@ const NAMES: Record<string, string> = {
   MHz: "MHz",
   "°": "deg",
   rad: "rad",
+  mrad: "mrad",
   u: "llmass",
   "g/mol": "llmass",
   K: "K",
