@@ -40,8 +40,12 @@ export function readCountsLine(text: string): CountsReading | null {
   return { kind: "counts", counts: { atoms, bonds, chiralFlag, version, tagged: tag !== "" } };
 }
 
-/** Four digits where three have room: the tag moved to the right, or the digits fill more than both columns. */
+/**
+ * Four digits where three have room: the tag moved to the right, or the digits fill more than both columns. Writers that
+ * keep the columns fill them with asterisks.
+ */
 function isOverflow(text: string): boolean {
+  if (/^(?:\*{3}|[ \d]{2}\d\*{3})/.test(text)) return true;
   const tag = text.search(/V2000/i);
   if (tag === TAG_AT + 1 || tag === TAG_AT + 2) return /^ {0,2}\d{4}/.test(text);
   return tag < 0 && (/^\d{7,8}(?: |$)/.test(text) || /^\d{4} {1,2}\d{1,2}(?: |$)/.test(text));

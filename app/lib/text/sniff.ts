@@ -1,19 +1,22 @@
 import { decodeText, encodingByMark, Utf8Stream } from "./decode.ts";
+import { hasRecordEnd, type TextFormat, textFormat } from "./text-format.ts";
 
 /** What the first bytes of a file are. Content decides; the name only hints (row G01). */
 export interface Sniffed {
   /** How the bytes are packed; for gzip sniff again behind it. */
   readonly container: "none" | "gzip" | "zip";
   /** Format of unpacked text; "unknown" leaves it to the XYZ reader to say what line 1 lacks. */
-  readonly format: "xyz" | "sdf" | "csv" | "unknown";
+  readonly format: TextFormat;
   /** Why the file cannot be taken in at all (rows G04, G06, G10), or null. */
   readonly refusal: { readonly code: string; readonly message: string; readonly hint: string } | null;
   /** Name and content disagree (row G01), or null. */
   readonly remark: { readonly code: string; readonly message: string } | null;
 }
 
-/** So many bytes are enough to know. */
-export const SNIFF_BYTES = 4096;
+/** So many bytes are enough for nearly all files. */
+const SNIFF_BYTES = 4096;
+/** So many are looked at where these leave it open: a record of a thousand atoms with its bonds has 90 kB. */
+export const WIDE_BYTES = 128 * 1024;
 
 const WAY_OUT = "Write the structures as XYZ or SDF, plain or gzip.";
 
@@ -72,7 +75,7 @@ const TEXT_FORMATS: readonly (readonly [line: RegExp, looksLike: string])[] = [
 ];
 
 /**
- * Names container and format from a file's first bytes (`SNIFF_BYTES` are enough), or says why it cannot be taken in.
+ * Names container and format from a file's first bytes (`WIDE_BYTES` are enough), or says why it cannot be taken in.
  *
  * @param bytes as uploaded, or as they come out of gzip
  * @param name the file's name, for the remark where it disagrees
@@ -90,12 +93,15 @@ export function sniff(bytes: Uint8Array, name: string): Sniffed {
     if (bytes.length > 0) return { container: "none", format: "unknown", refusal: null, remark: null };
     return refuse("G06", "The file has no frames.", "It is empty: was it written to the end?");
   }
-  const lines = text.split(/\r\n|\r|\n/);
-  const format = textFormat(lines);
-  if (format === "unknown") {
+  const lines = linesOf(text);
+  const shown = textFormat(lines);
+  const record = shown.open && bytes.length > SNIFF_BYTES && endsRecord(bytes);
+  if (shown.format === "unknown" && !record) {
     const other = otherText(lines);
     if (other) return refuse("G10", `This looks like ${other}, which is not read.`, WAY_OUT);
   }
+  // Where the content leaves it open the name decides, which else only hints.
+  const format = record || (shown.open && expectedByName(name) === "sdf") ? "sdf" : shown.format;
   return { container: "none", format, refusal: null, remark: disagreement(format, name) };
 }
 
@@ -135,7 +141,12 @@ function notText(looksLike: string): Sniffed {
 }
 
 function latin1(bytes: Uint8Array, from: number, to: number): string {
-  return String.fromCharCode(...bytes.subarray(from, to));
+  let text = "";
+  // A call takes only so many arguments.
+  for (let at = from; at < to && at < bytes.length; at += SNIFF_BYTES) {
+    text += String.fromCharCode(...bytes.subarray(at, Math.min(to, at + SNIFF_BYTES)));
+  }
+  return text;
 }
 
 function headText(head: Uint8Array): string {
@@ -149,42 +160,12 @@ function headText(head: Uint8Array): string {
   return latin1(bytes, 0, bytes.length);
 }
 
-/** Reactions and other files of the family of MOL: their reader says what they are (row S24). */
-const MOL_FAMILY = /^\$(?:RXN|MDL|RDFILE|RIREG|MFMT)/;
-
-function textFormat(lines: readonly string[]): Sniffed["format"] {
-  if (MOL_FAMILY.test(lines[0] ?? "")) return "sdf";
-  const first = lines.find((line) => line.trim() !== "") ?? "";
-  // Columns 34 to 39 of the fourth line hold the version; older files have none but keep the columns of the counts.
-  const counts = lines[3] ?? "";
-  if (
-    /^ *V[23]000/.test(counts.slice(33)) ||
-    /^[ \d]{3}[ \d]{3}(?:[ \d]{3}){0,9}\s*$/.test(counts.padEnd(6))
-  ) {
-    if (
-      /^ {0,2}\d/.test(counts) &&
-      lines.some((line) => /^(?:M {2}END|\$\$\$\$)/.test(line) || /^.{31}[A-Z]/.test(line))
-    ) {
-      return "sdf";
-    }
-  }
-  if (lines.some((line) => /^M {2}(?:END|V30)/.test(line) || line.startsWith("$$$$"))) return "sdf";
-  if (/^\s*\+?\d+(?:\s|$)/.test(first) && !/[,;|]/.test(first)) return "xyz";
-  return looksLikeTable(lines) ? "csv" : "unknown";
+/** A record larger than the first bytes ends further on. */
+function endsRecord(bytes: Uint8Array): boolean {
+  return hasRecordEnd(linesOf(headText(bytes.subarray(0, WIDE_BYTES))));
 }
 
-/** Two rows or more with the same number, two at least, of one delimiter. */
-function looksLikeTable(lines: readonly string[]): boolean {
-  const rows = lines
-    .filter((line) => line.trim() !== "")
-    .slice(0, -1)
-    .slice(0, 20);
-  if (rows.length < 2) return false;
-  return [",", ";", "\t", "|"].some((delimiter) => {
-    const counts = rows.map((row) => row.split(delimiter).length);
-    return counts.every((count) => count === counts[0] && count > 1) && /[A-Za-z]/.test(rows[0] ?? "");
-  });
-}
+const linesOf = (text: string) => text.split(/\r\n|\r|\n/);
 
 function otherText(lines: readonly string[]): string | null {
   for (const line of lines.slice(0, 60)) {
@@ -205,8 +186,11 @@ const BY_ENDING: Readonly<Record<string, keyof typeof FORMAT_NAMES>> = {
   tsv: "csv",
 };
 
+const endingOf = (name: string) => /\.([A-Za-z0-9]+)(?:\.gz)?$/.exec(name)?.[1]?.toLowerCase() ?? "";
+const expectedByName = (name: string) => BY_ENDING[endingOf(name)];
+
 function disagreement(format: Sniffed["format"], name: string): Sniffed["remark"] {
-  const ending = /\.([A-Za-z0-9]+)(?:\.gz)?$/.exec(name)?.[1]?.toLowerCase() ?? "";
+  const ending = endingOf(name);
   const expected = BY_ENDING[ending];
   if (format === "unknown" || expected === undefined || expected === format) return null;
   const message = `The name ends in .${ending}, but the content is ${FORMAT_NAMES[format]}; the content counts.`;

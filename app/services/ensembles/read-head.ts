@@ -1,4 +1,4 @@
-import { SNIFF_BYTES } from "../../lib/text/sniff.ts";
+import { WIDE_BYTES } from "../../lib/text/sniff.ts";
 
 /** The first bytes of a file, enough to tell what it is, and all of them again. */
 export interface ReadHead {
@@ -18,7 +18,7 @@ export async function readHead(source: AsyncIterable<Uint8Array>): Promise<ReadH
   const iterator = source[Symbol.asyncIterator]();
   const pieces: Uint8Array[] = [];
   let length = 0;
-  while (length < SNIFF_BYTES) {
+  while (length < WIDE_BYTES) {
     const next = await iterator.next();
     if (next.done) break;
     pieces.push(next.value);
