@@ -547,7 +547,7 @@ describe("what the view shows", () => {
     });
     expect(frames).toHaveLength(300);
     expect(notDrawn).toBe(700);
-    expect(caption.rest).toContain("the 300 most populated of 1000");
+    expect(caption.rest).toContain("the 300 most populated of 1,000");
   });
 });
 
