@@ -42,7 +42,8 @@ export function UseAsLevel({ column, ensembleId }: { column: ColumnView; ensembl
   const save = useFetcher<ActAnswer>();
   const look = useFetcher<{ span?: Span }>();
   const action = href("/ensembles/:id/columns", { id: ensembleId });
-  const done = save.data?.ok === true && save.state === "idle";
+  // At once: when the page has its columns again, this one is a level and the dialog is gone.
+  const done = save.data?.ok === true;
   useEffect(() => {
     if (!done) return;
     setOpen(false);
@@ -130,7 +131,8 @@ export function UseAsProperty({
   onDone: () => void;
 }) {
   const back = useFetcher<ActAnswer>();
-  const done = back.data?.ok === true && back.state === "idle";
+  // At once, as above.
+  const done = back.data?.ok === true;
   useEffect(() => {
     if (!done) return;
     onDone();
