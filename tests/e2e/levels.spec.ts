@@ -197,6 +197,7 @@ test.describe("levels", () => {
     await page.getByRole("button", { name: "Undo" }).click();
     await expect(page.getByLabel("Plan", { exact: true })).toContainText("Spring, version 1");
     await expect(page.getByText("Removed within thirty days")).toHaveCount(0);
+    await expect(page.getByRole("button", { name: "Save plan" })).toHaveCount(1);
     await page.goto(`/ensembles/${id}/logbook`);
     await expect(page.getByText("Saved the plan Spring")).toBeVisible();
   });

@@ -57,7 +57,7 @@ export function SavePlan({
         />
       ) : null}
       {readOnly ? null : <SaveDialog key={open?.id ?? "new"} set={set} open={open} onSaved={onSaved} />}
-      {readOnly || open === null ? null : <RemoveDialog key={open.id} open={open} {...removal} />}
+      {readOnly || open === null ? null : <RemoveDialog open={open} {...removal} />}
     </div>
   );
 }
