@@ -14,6 +14,7 @@ import {
   type MatchTask,
   type MatrixAnswer,
   type MatrixTask,
+  matchBuffers,
   type ProgressMessage,
   type SiftAnswer,
   type SiftTask,
@@ -25,7 +26,13 @@ const PROGRESS_INTERVAL_MS = 100;
 export default function compute(
   task: ComputeTask,
 ): SiftAnswer | MatchAnswer | MatrixAnswer | AveragesAnswer | DrawAnswer {
-  if (task.kind === "match") return match(task);
+  if (task.kind === "match") {
+    try {
+      return match(task);
+    } finally {
+      for (const buffer of matchBuffers(task)) release(buffer);
+    }
+  }
   if (task.kind === "draw") return { kind: "drawn", drawn: drawUncertainty(task.input) };
   if (task.kind === "averages") {
     return { kind: "averaged", ...averageErrorsOf(task.moments, task.weighed, task.error) };
@@ -37,7 +44,19 @@ export default function compute(
     throw error;
   } finally {
     task.port.close();
+    if (task.kind === "sift") release(task.positions.buffer as ArrayBuffer);
   }
+}
+
+/**
+ * Gives memory that was moved here back at once, by moving it on to nobody: the coordinates of the largest ensembles are
+ * 100 MB, and a thread that waits for work collects late.
+ */
+function release(buffer: ArrayBuffer): void {
+  const { port1, port2 } = new MessageChannel();
+  port1.postMessage(null, [buffer]);
+  port1.close();
+  port2.close();
 }
 
 function match(task: MatchTask): MatchAnswer {

@@ -13,6 +13,9 @@ import { makeTeam } from "../factories/people";
 import { frame, makeLab, post, reference, takenIn } from "../factories/upload";
 import { call } from "../setup/app";
 
+/** Enough for a sift that lasts until it is disturbed. */
+const FRAMES = 6_000;
+
 const LONG_AGO = new Date(Date.now() - 3_600_000);
 
 /** A row of the queue that no handler knows: for what happens around the work. */
@@ -140,7 +143,7 @@ describe("a sift that runs", () => {
   beforeAll(async () => {
     await buildWorker();
     ({ token } = await makeLab());
-    const taken = await takenIn(token, [{ name: "noise.xyz", content: noisy(9_000) }]);
+    const taken = await takenIn(token, [{ name: "noise.xyz", content: noisy(FRAMES) }]);
     ensembleId = taken.id;
     await db.delete(jobs);
     await db.delete(sifts);
@@ -165,6 +168,14 @@ describe("a sift that runs", () => {
     return { id, jobId };
   }
 
+  /** The answer once the sift has ended, however long a busy machine takes. */
+  async function ended(id: string) {
+    for (;;) {
+      const answer = await (await call(`/api/v1/sifts/${id}?wait=60`, { token })).json();
+      if (answer.status !== "queued" && answer.status !== "running") return answer;
+    }
+  }
+
   it("is cancelled: the thread stops, the answer says so, nothing is stored (security E10)", async () => {
     await startJobs();
     const { id, jobId } = await running();
@@ -187,19 +198,18 @@ describe("a sift that runs", () => {
     expect((await (await waiting).json()).status).toMatch(/queued|running/);
     expect(await row(jobId)).toMatchObject({ state: "queued", holder: null, attempts: 0, progress: 0 });
     await startJobs();
-    const done = await (await call(`/api/v1/sifts/${id}?wait=60`, { token })).json();
+    const done = await ended(id);
     expect(done).toMatchObject({ status: "done", progress: 1 });
-    expect(done.result.kept.length + done.result.dropped.length).toBe(9_000);
-  }, 90_000);
+    expect(done.result.kept.length + done.result.dropped.length).toBe(FRAMES);
+  }, 240_000);
 
   it("is begun again when its thread is lost", async () => {
     await startJobs();
     const { id, jobId } = await running();
     jobState().running.get(jobId)?.abort.abort();
-    const done = await (await call(`/api/v1/sifts/${id}?wait=60`, { token })).json();
-    expect(done.status).toBe("done");
+    expect((await ended(id)).status).toBe("done");
     expect(await row(jobId)).toMatchObject({ attempts: 2 });
-  }, 90_000);
+  }, 240_000);
 
   it("stores nothing when another process has taken the job over", async () => {
     await startJobs();
@@ -211,8 +221,8 @@ describe("a sift that runs", () => {
     // The other process dies: its lease ends, and the job is computed here after all.
     await db.update(jobs).set({ leaseUntil: LONG_AGO }).where(eq(jobs.id, jobId));
     await startJobs();
-    expect((await (await call(`/api/v1/sifts/${id}?wait=60`, { token })).json()).status).toBe("done");
-  }, 90_000);
+    expect((await ended(id)).status).toBe("done");
+  }, 240_000);
 
   it("of one person's five does not stand before the one of another", async () => {
     const stranger = await makeLab("Another lab");
