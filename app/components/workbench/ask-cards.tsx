@@ -8,6 +8,7 @@ import { ABSENT, fixed, formatEnergy, withUnit } from "~/lib/format";
 import { readAskId } from "~/lib/intake/reading-questions";
 import type { IntakeQuestion, QuestionOption as Option } from "~/lib/intake/report";
 import { moreMayFollow } from "~/lib/workbench/findings";
+import { spreadDigits } from "~/lib/workbench/spread-digits";
 import type { ActAnswer } from "./act-answer";
 
 /** What intake leaves open, one card a question; nothing is computed before they are answered. */
@@ -24,7 +25,8 @@ export function AskCards({
   const open = questions
     .map((question, k) => ({ question, place: k + 1 }))
     .filter(({ question }) => question.answered === undefined);
-  const all = moreMayFollow(questions) ? `at least ${questions.length + 1}` : String(questions.length);
+  // What answers may bring is not counted before it is there: rail, finding and cards give one number.
+  const all = `${questions.length}${moreMayFollow(questions) ? " so far" : ""}`;
   return (
     <div className="mt-7 grid gap-5">
       {open.map(({ question, place }) => (
@@ -239,13 +241,8 @@ function OptionHead({ question }: { question: IntakeQuestion }) {
   );
 }
 
-/** The spread as it is written, with the decimals that tell it from nothing; hartrees need more than kilocalories. */
-function spreadText(spread: number): string {
-  const digits = spread >= 1000 || Number.isInteger(spread) ? 0 : spread >= 1 ? 2 : 5;
-  return fixed(spread, digits);
-}
-
 function OptionFigures({ question, option }: { question: IntakeQuestion; option: Option }) {
+  const digits = spreadDigits(question.options.map((one) => one.spread ?? null));
   const spread = option.spreadKcal;
   if (option.values === undefined) {
     return spread === undefined || spread === null ? null : (
@@ -268,7 +265,7 @@ function OptionFigures({ question, option }: { question: IntakeQuestion; option:
       ))}
       <span>
         <span className="text-xs text-ink-3 sm:sr-only">spread </span>
-        {typeof option.spread === "number" ? spreadText(option.spread) : ABSENT}
+        {typeof option.spread === "number" ? fixed(option.spread, digits) : ABSENT}
       </span>
     </span>
   );

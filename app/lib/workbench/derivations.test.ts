@@ -313,7 +313,7 @@ describe("findings in words", () => {
     expect(intakeFinding(whole, quiet).text).toBe("400 frames read: all are accepted.");
     const unit = { id: "u", code: "energy-from", text: "Which number is the energy?", options: [] };
     expect(intakeFinding(open, { ...quiet, waiting: 400, questions: [unit] }).text).toBe(
-      "400 frames read: 400 can be accepted. At least three questions come first; nothing is computed before they are answered.",
+      "400 frames read: 400 can be accepted. Two questions come first, and an answer may bring another; nothing is computed before they are answered.",
     );
   });
 

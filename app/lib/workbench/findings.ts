@@ -261,10 +261,10 @@ export function intakeFinding(
   const { waiting } = intake;
   const read = `${plural(frames, "frame")} read:`;
   if (openQuestions > 0) {
-    const atLeast = moreMayFollow(intake.questions);
-    const count = openQuestions + (atLeast ? 1 : 0);
-    const asked = `${atLeast ? "at least " : ""}${countWord(count)}`;
-    const first = count === 1 ? "One question comes" : `${capital(asked)} questions come`;
+    const one = openQuestions === 1;
+    const first = one ? "One question comes" : `${capital(countWord(openQuestions))} questions come`;
+    // The count is that of every other place; what answers may bring is not counted before it is there.
+    const more = moreMayFollow(intake.questions) ? ", and an answer may bring another" : "";
     const other = held - waiting;
     const parts = [
       waiting > 0 ? `${formatCount(waiting)} can be accepted` : null,
@@ -272,15 +272,14 @@ export function intakeFinding(
       other > 0 ? `${formatCount(other)} ${other === 1 ? "is" : "are"} held for other reasons` : null,
     ].filter((part) => part !== null);
     if (accepted > 0) {
-      const open =
-        openQuestions === 1 ? "One question is" : `${capital(countWord(openQuestions))} questions are`;
+      const open = one ? "One question is" : `${capital(countWord(openQuestions))} questions are`;
       return {
         text: `${read} ${joinWords(parts)}. ${open} open; what is accepted is used meanwhile.`,
         second: null,
       };
     }
     return {
-      text: `${read} ${joinWords(parts)}. ${first} first; nothing is computed before ${count === 1 ? "it is" : "they are"} answered.`,
+      text: `${read} ${joinWords(parts)}. ${first} first${more}; nothing is computed before ${one && more === "" ? "it is" : "they are"} answered.`,
       second: null,
     };
   }
