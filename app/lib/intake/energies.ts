@@ -224,7 +224,7 @@ export class EnergyScan {
   #finishGiven(candidates: readonly EnergyCandidate[], include: (frame: number) => boolean): EnergyFindings {
     const from = this.#from ?? "";
     const column = this.#given.finish(from, this.#rows);
-    if (column.count === 0) throw absentEnergy(from);
+    if (column.count === 0) throw absentEnergy(column);
     const known = this.#trackOfGiven(from);
     const rule = parseFrom(from);
     const key = rule.kind === "number" ? null : rule.name;

@@ -1,4 +1,5 @@
-import { DomainError } from "../errors.ts";
+import { DomainError, type Fault } from "../errors.ts";
+import { quoteFound } from "../text/escape.ts";
 import { type CommentNumber, scanComment } from "./comment-numbers.ts";
 
 /** Which number is the energy: `key:NAME`, `number:N`, or `field:NAME` of an SDF record. */
@@ -158,22 +159,40 @@ export function readEnergyColumn(
     places.push(row);
   }
   const column = values.finish(from, places);
-  if (column.count === 0) throw absentEnergy(from);
+  if (column.count === 0) throw absentEnergy(column);
   return column;
 }
 
-/** The error for a rule that fits no frame (422 in the API). */
-export function absentEnergy(from: EnergyFrom): DomainError {
+/** The error for a rule that fits no frame (422 in the API): with the first text that stands where its number should. */
+export function absentEnergy({
+  from,
+  rows,
+  problems,
+}: Pick<EnergyColumn, "from" | "rows" | "problems">): DomainError {
   const rule = parseFrom(from);
   const what =
     rule.kind === "number"
       ? `number ${rule.position} of the comment line`
       : `${rule.kind === "field" ? "the data field " : ""}“${rule.name}”`;
-  const message = `No frame has ${what} as a number.`;
-  return new DomainError(
-    "invalid",
-    "The energy was not found",
-    `${message} Check energyFrom: names of keys and data fields are exact in case, and every number of the comment line counts from 1.`,
-    { faults: [{ field: "energyFrom", message }] },
-  );
+  const none = `No frame has ${what} as a number.`;
+  const [found] = problems;
+  const row = found && rows[found[0]];
+  if (!row) {
+    return notFound(
+      `${none} Check energyFrom: names of keys and data fields are exact in case, and every number of the comment line counts from 1.`,
+      { message: none },
+    );
+  }
+  const { frame, file } = row;
+  const line = row.textLine ?? (rule.kind === "field" ? row.line : row.line + 1);
+  const place = `${file}, ${rule.kind === "field" ? "record at line" : "line"} ${line}, frame ${frame}`;
+  const message = `${none} Found “${quoteFound(found[1])}” (${place}).`;
+  const hint = "Write one number there, with its unit at most, or name another number with energyFrom.";
+  return notFound(`${message} ${hint}`, { file, frame, line, message });
+}
+
+function notFound(detail: string, fault: Omit<Fault, "field">): DomainError {
+  return new DomainError("invalid", "The energy was not found", detail, {
+    faults: [{ field: "energyFrom", ...fault }],
+  });
 }

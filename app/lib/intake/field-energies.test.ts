@@ -29,6 +29,9 @@ describe("numbers of data fields", () => {
     ["energy_gap", "5.0 eV", [5, "eV", "other"]],
     ["distance", "5.0 Å", [5, null, "other"]],
     ["twice the same", ["1.5", "1.5 "], [1.5, null, "loose"]],
+    ["E", "0.6\n\nstray", [0.6, null, "energy"]],
+    ["E", "-12.3 kcal/mol\n\nfound by hand in 2 steps\nand more", [-12.3, "kcal/mol", "energy"]],
+    ["E", `0.6\n\n${"x".repeat(300)}`, [0.6, null, "energy"]],
   ])("%s: %j", (name, value, expected) => {
     expect(scanOne(name, value)).toEqual(expected);
   });
@@ -44,6 +47,9 @@ describe("numbers of data fields", () => {
     ["glued", "5x"],
     ["kelvin by mistake", "5k"],
     ["two values", ["1.5", "1.6"]],
+    ["two values that begin alike", ["1.5", "1.5\n\nstray"]],
+    ["a further number behind the end of the value", "0.6\n\n0.7"],
+    ["a unit behind the end of the value", "0.6\n\nkcal/mol"],
     ["empty", ""],
     ["long", `1 ${"x".repeat(300)}`],
   ])("%s is none: %j", (name, value) => {

@@ -25,7 +25,7 @@ export function scanFields(fields: SdfFields): ScannedComment {
     position += 1;
     const text = oneText(values);
     if (name === "" || text === "") continue;
-    const read = readFieldNumber(text);
+    const read = fieldNumber(values);
     const number = read && { position, key: name, words: [], repeated: false, inArray: false, ...read };
     if (number) numbers.push(number);
     keyed.set(name, { text: text.slice(0, KEPT), number });
@@ -44,8 +44,8 @@ export function scanFields(fields: SdfFields): ScannedComment {
 export function extractFieldEnergy(fields: SdfFields, name: string): ExtractedEnergy {
   const values = fields.get(name);
   const text = values === undefined ? "" : oneText(values);
-  if (text === "") return null;
-  const read = readFieldNumber(text);
+  if (values === undefined || text === "") return null;
+  const read = fieldNumber(values);
   return read ? { text: read.text, value: read.value } : { problem: text.slice(0, KEPT) };
 }
 
@@ -65,10 +65,30 @@ export function oneText(values: readonly string[]): string {
   return more.every((value) => value === first) ? first : [first, ...more].join(" | ");
 }
 
-/** A number with nothing but a few words behind it, of which the first may be its unit; null for any other value. */
-export function readFieldNumber(
-  written: string,
-): (Pick<CommentNumber, "text" | "unit" | "next"> & { value: number }) | null {
+type FieldNumber = Pick<CommentNumber, "text" | "unit" | "next"> & { value: number };
+
+/** Values of one tag that differ are no number, whatever each of them is. */
+function fieldNumber(values: readonly string[]): FieldNumber | null {
+  const [first = "", ...more] = values.map((value) => value.trim());
+  return more.every((value) => value === first) ? readFieldNumber(first) : null;
+}
+
+/**
+ * A number with nothing but a few words behind it, of which the first may be its unit; null for any other value. A blank
+ * line ends a value: text behind it belongs to the field and is remarked on (row S17), but the number stands before it,
+ * unless what follows is one more number or a unit.
+ *
+ * @example readFieldNumber("0.6\n\nby hand") // { text: "0.6", value: 0.6, unit: null, next: "" }
+ */
+export function readFieldNumber(written: string): FieldNumber | null {
+  const end = written.search(/\n[^\S\n]*\n/);
+  if (end < 0) return readEndedNumber(written);
+  const [next = ""] = written.slice(end).trim().split(/\s/, 1);
+  const goesOn = numberLength(plainBlanksAndMinus(next), 0) > 0 || parseEnergyUnit(next) !== null;
+  return goesOn ? null : readEndedNumber(written.slice(0, end).trim());
+}
+
+function readEndedNumber(written: string): FieldNumber | null {
   if (written.length > KEPT) return null;
   const text = plainBlanksAndMinus(written);
   const length = numberLength(text, 0);

@@ -9,6 +9,7 @@ const PAGE_WORDS: readonly (readonly [RegExp, string])[] = [
     "Choose another one: names of keys and data fields are exact in case",
   ],
   [/(?:Name|name) it with energyFrom, or send energyFrom=none/g, "Choose it, or say “none”"],
+  [/name another number with energyFrom/g, "choose another number"],
   [/name it with energyFrom/g, "choose it as the energy"],
   [/send energyFrom=none/g, "choose “none” as the energy"],
   [/State energyUnit:/g, "State the unit of the energies:"],
