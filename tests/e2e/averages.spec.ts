@@ -77,7 +77,7 @@ test("a contact and a torsion picked on the structure are averaged by their rule
   });
 
   await test.step("averages.csv has the same figures", async () => {
-    const link = await page.getByRole("link", { name: "CSV", exact: true }).first().getAttribute("href");
+    const link = await page.getByRole("link", { name: "averages.csv", exact: true }).getAttribute("href");
     const csv = await (await page.request.get(link ?? "")).text();
     expect(csv.split("\r\n")[0]).toBe("property,unit,rule,average,spread,uncertainty,covered");
     const line = csv.split("\r\n").find((one) => one.includes("torsion C3–C4–N5–S6")) ?? "";

@@ -6,6 +6,7 @@ import { Finding, SectionHead } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
 import { TextLink } from "~/components/ui/text-link";
 import { CatchingUp, OutdatedNote, SectionState } from "~/components/workbench/section-state";
+import { TemperatureNote } from "~/components/workbench/temperature-note";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { useSameSift } from "~/hooks/use-same-sift";
 import type { AveragesView } from "~/lib/averages/averages-view";
@@ -141,6 +142,7 @@ function Filled({
           ? ` ${plural(weighed.without, "conformer has", "conformers have")} no energy at ${weighed.level.name} and ${weighed.without === 1 ? "takes" : "take"} no part.`
           : ""}
       </p>
+      <TemperatureNote levels={[weighed.level]} temperaturesK={averaged.temperatures} />
       <MaybeLevels className="mt-2 max-w-[46rem] text-xs text-ink-2" />
       <PropertyTable
         averaged={averaged}

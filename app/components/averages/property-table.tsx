@@ -1,7 +1,8 @@
 import { Download } from "lucide-react";
 import { href } from "react-router";
+import { saveText } from "~/components/charts/export-figure";
 import { Badge } from "~/components/ui/badge";
-import { ButtonLink, buttonClass } from "~/components/ui/button";
+import { Button, ButtonLink } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
 import { Provenance } from "~/components/ui/provenance";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
@@ -10,6 +11,7 @@ import type { Average } from "~/lib/averages/average";
 import { fromDefinition } from "~/lib/averages/observable";
 import { observableWords } from "~/lib/averages/observable-words";
 import type { PropertyValues } from "~/lib/averages/property-set";
+import { shownAveragesCsv } from "~/lib/averages/shown-csv";
 import { digitsFor } from "~/lib/averages/words";
 import {
   ABSENT,
@@ -56,10 +58,10 @@ export function PropertyTable({
             Add a property table
           </ButtonLink>
         ) : null}
-        <a className={buttonClass({ size: "sm" })} href={csv} download>
+        <Button size="sm" onClick={() => saveShown(averaged, weighed, sigma, ensemble.name)}>
           <Download aria-hidden="true" />
           CSV
-        </a>
+        </Button>
       </BlockHead>
       <Table aria-label="Averages of the properties" className="figures">
         <thead>
@@ -133,13 +135,37 @@ export function PropertyTable({
         {averaged.draws === null || sigma === null
           ? "."
           : ` (${formatCount(averaged.draws)} draws of ± ${formatEnergy(sigma)} kcal/mol on each energy, seed ${averaged.seed}).`}{" "}
-        Below 90 % covered nothing is averaged; the file leaves those cells empty.{" "}
+        Below 90 % covered nothing is averaged; the file leaves those cells empty. The CSV is this table with
+        every temperature; one row a column at {formatTemperature(averaged.temperatures[averaged.here])} K is
+        in{" "}
+        <a className="text-link underline underline-offset-3" href={csv} download>
+          averages.csv
+        </a>
+        .{" "}
         {scalars.some(({ moments }) => moments.mirrored.some((flag) => flag === 1))
           ? "A shape that stands for a mirror pair enters an angle half at t and half at −t, so that a mean of both hands lies at 0° or 180° whatever the energies."
           : null}
       </p>
     </section>
   );
+}
+
+function saveShown(
+  averaged: Averaged,
+  weighed: WeighedConformers,
+  sigma: number | null,
+  ensemble: string,
+): void {
+  const text = shownAveragesCsv({
+    temperatures: averaged.temperatures,
+    here: averaged.here,
+    level: weighed.level.name,
+    weights: weighed.weights.kind,
+    sigma,
+    rows: averaged.properties.map((one) => ({ ...one, rule: one.property.rule })),
+  });
+  const kelvin = averaged.temperatures.map((one) => formatTemperature(one)).join(", ");
+  saveText(`${ensemble} averages at ${kelvin} K.csv`, "text/csv", text);
 }
 
 /** Name of the place where the atoms of a quantity stand. */

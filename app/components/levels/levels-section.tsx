@@ -6,9 +6,10 @@ import { ButtonLink } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { StatePanel } from "~/components/ui/state-panel";
 import { TextLink } from "~/components/ui/text-link";
+import { TemperatureNote } from "~/components/workbench/temperature-note";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { useLevelTask } from "~/hooks/use-level-task";
-import { formatCount, formatTemperature, plural } from "~/lib/format";
+import { formatCount, plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
 import type { LevelEnergiesView } from "~/lib/levels/level-energies";
 import { comparisonStory } from "~/lib/levels/story";
@@ -105,9 +106,8 @@ function Compared({ levels }: { levels: readonly LevelData[] }) {
     <>
       <Finding more={[story.second, leftWords(found, among)].filter(Boolean).join(" ")}>{story.text}</Finding>
       <LevelsSettings levels={levels} level={level} reference={reference} found={found} />
-      <p className="mt-3 max-w-[46rem] text-xs text-ink-3">
-        {weightsReason} {temperatureWords([level, reference], temperatureK)}
-      </p>
+      <p className="mt-3 max-w-[46rem] text-xs text-ink-3">{weightsReason}</p>
+      <TemperatureNote levels={[level, reference]} temperaturesK={[temperatureK]} />
       <MaybeLevels className="mt-2 max-w-[46rem] text-xs text-ink-2" />
       <Figures found={found} />
       {levels.length > 2 ? <LevelMatrix levels={levels} members={members} /> : null}
@@ -124,20 +124,6 @@ function leftWords({ paired, level, reference }: Comparison, among: "conformers"
     `${plural(paired.left.length, what)} left out: ${formatCount(paired.missingLevel)} without an energy at ${level.name}, ` +
     `${formatCount(paired.missingReference)} at ${reference.name} (${names.join(", ")}${paired.left.length > 6 ? ", …" : ""}).`
   );
-}
-
-/** Free energies belong to one temperature. */
-function temperatureWords(levels: readonly LevelData[], temperatureK: number): string {
-  const off = levels.filter(
-    (level) => level.temperature !== null && Math.abs(level.temperature - temperatureK) > 0.005,
-  );
-  if (off.length === 0) return "";
-  return off
-    .map(
-      (level) =>
-        `${level.name} was computed for ${formatTemperature(level.temperature)} K and does not hold at another temperature.`,
-    )
-    .join(" ");
 }
 
 function Figures({ found: live }: { found: Comparison }) {

@@ -11,6 +11,7 @@ import { StatePanel } from "~/components/ui/state-panel";
 import { TextButton, TextLink } from "~/components/ui/text-link";
 import { showToast } from "~/components/ui/toast";
 import { RemovedList } from "~/components/workbench/removed-list";
+import { TemperatureNote } from "~/components/workbench/temperature-note";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
@@ -147,6 +148,12 @@ function Planned({
           This plan was saved on another distinct set; its figures are of the one shown now.
         </Note>
       ) : null}
+      <TemperatureNote
+        levels={levels.filter(
+          (one) => one.id === plan.start || plan.steps.some(({ level }) => level === one.id),
+        )}
+        temperaturesK={[plan.temperatureK]}
+      />
       {readOnly ? null : <PlanSettings plan={plan} onChange={(part) => change({ ...plan, ...part })} />}
       <StepsTable
         plan={plan}

@@ -12,7 +12,6 @@ import { TextLink } from "~/components/ui/text-link";
 import { formatCount, plural } from "~/lib/format";
 import { measureHistogram } from "~/lib/measure/histogram";
 import { measureKind, measureLabel, measureValue } from "~/lib/measure/measure";
-import { temperatureWarning } from "~/lib/thermo/temperature-warning";
 import { outsideWindow } from "~/lib/workbench/conformers";
 import { cumulativePopulation } from "~/lib/workbench/cumulative";
 import { populationsFinding, spreadCaution, windowFinding } from "~/lib/workbench/findings";
@@ -22,6 +21,7 @@ import { ConformerTable, type MeasureColumn } from "./conformer-table";
 import { PlainPopulationForm } from "./plain-forms";
 import { PopulationSettings } from "./population-settings";
 import { OutdatedNote, SectionState } from "./section-state";
+import { TemperatureNote } from "./temperature-note";
 import { ThermoFigures } from "./thermo-figures";
 import { type FoundByFilter, useFoundBy } from "./use-found-by";
 import { useShape } from "./use-shape";
@@ -65,7 +65,7 @@ export function PopulationsSection() {
                   ? " Zero-point and vibrational contributions are not in them; folded shapes often come out too populated."
                   : ""}
               </p>
-              <TemperatureNote />
+              <TemperatureNote levels={level ? [level] : []} temperaturesK={[temperatureK]} />
               <ThermoFigures populations={populations} />
               <Charts foundBy={foundBy} />
             </>
@@ -85,18 +85,6 @@ function SpreadNote() {
   return (
     <Note tone="remark" className="mt-4">
       {caution}
-    </Note>
-  );
-}
-
-/** Free energies belong to one temperature: at another the populations carry a warning. */
-function TemperatureNote() {
-  const { level, temperatureK } = useWorkbench();
-  const warning = level ? temperatureWarning(level, temperatureK) : null;
-  if (warning === null) return null;
-  return (
-    <Note tone="remark" className="mt-4">
-      <p role="status">{warning}</p>
     </Note>
   );
 }

@@ -15,6 +15,11 @@ describe("populations at another temperature than that of the energies", () => {
     }
   });
 
+  it("are named all, where several are shown at once", () => {
+    expect(temperatureWarning(free, 250, 298.15, 350)).toContain("are taken at 250 K and 350 K: ");
+    expect(temperatureWarning({ ...free, temperature: null }, 250, 350)).toContain("it is 250 K or 350 K");
+  });
+
   it("are warned of at any temperature where free energies do not say theirs", () => {
     expect(temperatureWarning({ ...free, temperature: null }, 298.15)).toContain("is not stated");
     expect(temperatureWarning({ ...free, energyKind: "enthalpy", temperature: null }, 298.15)).toBeNull();

@@ -9,6 +9,7 @@ import {
   propertyMoments,
 } from "../../lib/averages/property-set.ts";
 import { DEFAULT_SEED } from "../../lib/averages/uncertainty.ts";
+import { formatTemperature } from "../../lib/format.ts";
 import { STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
 import { type Actor, accessSift } from "../auth/access.server.ts";
 import { findEnsembleRow } from "../ensembles/load-ensemble.server.ts";
@@ -73,7 +74,7 @@ export async function exportAverages(options: {
     });
   }
   return {
-    name: `${ensemble.name} averages.csv`,
+    name: `${ensemble.name} averages ${formatTemperature(temperatureK)} K.csv`,
     text: averagesCsv(averagesRows(properties, averages, errors)),
   };
 }
