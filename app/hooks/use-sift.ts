@@ -171,7 +171,7 @@ export function useNewSift(ensembleId: string, onDone: (siftId: string) => void)
       running.current = state.id;
       setAsked({ id: state.id, progress: state.progress, request });
       while (!hasEnded(state.status)) {
-        const { id } = state;
+        const id: string = state.id;
         state = await again(() => askState(`/files/sifts/${id}?wait=1`));
         if (state === null || mine !== turn.current) return;
         setAsked({ id: state.id, progress: state.progress, pairs: state.pairs, request });
