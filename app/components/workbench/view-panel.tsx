@@ -180,7 +180,8 @@ function hiddenWords(ensemble: EnsembleView, conformers: ViewerProps["conformers
   const drawn = conformers.filter(({ selected, tone }) => selected && tone !== "held").slice(0, MAX_COLOURED);
   const [first] = drawn;
   if (first === undefined || drawn.length < 2) return null;
-  const found = coinciding(makeGraph(Uint8Array.from(ensemble.elements), ensemble.bonds), drawn);
+  const named = drawn.map(({ name = "", positions }) => ({ name, positions }));
+  const found = coinciding(makeGraph(Uint8Array.from(ensemble.elements), ensemble.bonds), named);
   if (found.length === 0) return null;
   const farthest = found.reduce((most, { rmsd }) => Math.max(most, rmsd), 0);
   const near = withUnit(formatRmsd(farthest), "Å");
