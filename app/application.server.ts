@@ -2,6 +2,7 @@ import { createRequestHandler, RouterContextProvider, type ServerBuild } from "r
 import { addressContext } from "./context.ts";
 import { env } from "./env.server.ts";
 import { DomainError } from "./lib/errors.ts";
+import { isApiPath } from "./middleware/api-path.server.ts";
 import { securityHeaders } from "./middleware/security-headers.server.ts";
 import { boot, shutDown } from "./services/boot.server.ts";
 import { shutDownJobs } from "./services/jobs/shutdown.server.ts";
@@ -41,17 +42,29 @@ export function clientAddress(peer: string, forwarded: string | undefined, trust
 }
 
 /**
+ * The router answers addresses that end in ".data" in a format of its own, for its pages. The API has none: with a slash
+ * behind it the address is one like any other. The body goes over as it is, unread.
+ */
+function asCall(request: Request): Request {
+  const url = new URL(request.url);
+  if (!isApiPath(url.pathname) || !url.pathname.endsWith(".data")) return request;
+  url.pathname += "/";
+  const { method, headers, body, signal } = request;
+  return new Request(url, { method, headers, body, signal, ...(body === null ? {} : { duplex: "half" }) });
+}
+
+/**
  * The router's handler. An Origin that is no address would be answered by the router itself, before any middleware and
- * without our headers; as "null" it comes to our own check, which refuses it all the same.
+ * without our headers; as "null" it comes to our own check, which refuses it all the same. The header is set on the
+ * request as it came: a copy of a request begins to read the body, which nobody then reads to its end.
  */
 function makeHandler(build: ServerBuild | (() => Promise<ServerBuild>), mode: string) {
   const handle = createRequestHandler(build, mode);
-  return (request: Request, context: RouterContextProvider): Promise<Response> => {
+  return (given: Request, context: RouterContextProvider): Promise<Response> => {
+    const request = asCall(given);
     const origin = request.headers.get("origin");
-    if (origin === null || URL.canParse(origin)) return handle(request, context);
-    const headers = new Headers(request.headers);
-    headers.set("origin", "null");
-    return handle(new Request(request, { headers }), context);
+    if (origin !== null && !URL.canParse(origin)) request.headers.set("origin", "null");
+    return handle(request, context);
   };
 }
 

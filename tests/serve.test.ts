@@ -352,6 +352,23 @@ describe("bodies", () => {
     expect([answer.status, await answer.text()]).toEqual([413, "enough"]);
   });
 
+  it("are read to their end where somebody took hold of them and forgot them", async () => {
+    const forgotten: Request[] = [];
+    handle = async (request) => {
+      // A copy begins to read at once.
+      forgotten.push(new Request(request, { headers: {} }));
+      return new Response("refused", { status: 403 });
+    };
+    for (const [pathname, bytes] of [
+      ["/small", 3],
+      ["/upload", 5_000_000],
+    ] as const) {
+      const answer = await fetch(base + pathname, { method: "POST", body: Buffer.alloc(bytes) });
+      expect([answer.status, await answer.text()]).toEqual([403, "refused"]);
+    }
+    expect(forgotten).toHaveLength(2);
+  });
+
   it("of small calls stop at their limit, those of uploads do not", async () => {
     handle = async (request) => {
       try {

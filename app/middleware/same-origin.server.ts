@@ -3,6 +3,7 @@ import { requestIdContext } from "../context.ts";
 import { env, isLoopback } from "../env.server.ts";
 import { forbidden } from "../services/http.server.ts";
 import { log } from "../services/log.server.ts";
+import { isApiPath } from "./api-path.server.ts";
 import { refuse } from "./refuse.server.ts";
 
 const SAFE = new Set(["GET", "HEAD", "OPTIONS"]);
@@ -20,16 +21,11 @@ export function isOwnOrigin(origin: string | null, own: string): boolean {
 }
 
 /**
- * Programs call the API with a token and send no cookie: nothing that another site could borrow. Whether the token is
- * good is decided after this.
+ * Refuses every unsafe request that no page of ours sent, whatever route it goes to. Calls of the API come by token
+ * only; whether that is good is decided after this.
  */
-export function isProgramCall(pathname: string, headers: Headers): boolean {
-  return /^\/api\/v1\//.test(pathname) && !headers.has("cookie");
-}
-
-/** Refuses every unsafe request that no page of ours sent, whatever route it goes to. */
 export const sameOriginMiddleware: MiddlewareFunction<Response> = async ({ request, url, context }, next) => {
-  if (SAFE.has(request.method) || isProgramCall(url.pathname, request.headers)) return next();
+  if (SAFE.has(request.method) || isApiPath(url.pathname)) return next();
   const origin = request.headers.get("origin");
   if (isOwnOrigin(origin, env().APP_ORIGIN)) return next();
   log.warn({ requestId: context.get(requestIdContext), origin: origin?.slice(0, 200) }, "foreign origin");

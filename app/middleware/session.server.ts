@@ -3,6 +3,7 @@ import { actorContext, addressContext, cookieChangeContext, requestIdContext } f
 import { type FoundSession, findSession } from "../services/auth/find-session.server.ts";
 import { within } from "../services/health.server.ts";
 import { asDomainError } from "../services/http.server.ts";
+import { isApiPath } from "./api-path.server.ts";
 import { refuse } from "./refuse.server.ts";
 import { readSessionCookie, writeSessionCookie } from "./session-cookie.server.ts";
 
@@ -13,9 +14,10 @@ async function sessionOf(cookies: string | null): Promise<FoundSession | null> {
 
 /**
  * Finds out who calls, from the cookie. It alone writes the cookie: sign-in and sign-out leave their wish in the
- * context, so that loaders that run side by side cannot overwrite each other's.
+ * context, so that loaders that run side by side cannot overwrite each other's. The API reads no cookie at all.
  */
 export const sessionMiddleware: MiddlewareFunction<Response> = async ({ request, url, context }, next) => {
+  if (isApiPath(url.pathname)) return next();
   const wish: { change: { secret: string | null; stay: boolean } | null } = { change: null };
   context.set(cookieChangeContext, wish);
   let session: FoundSession | null;

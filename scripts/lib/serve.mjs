@@ -72,6 +72,8 @@ function drain(incoming) {
       if (bytes > DRAIN_BYTES) incoming.destroy();
     });
     for (const event of ["end", "close", "error"]) incoming.once(event, done);
+    // Whoever began to read and left without a word would hold the flow for good.
+    incoming.removeAllListeners("readable");
     incoming.resume();
   });
 }

@@ -1,10 +1,14 @@
+import { type RequestOptions, request } from "node:http";
+import type { AddressInfo } from "node:net";
 import { afterEach, beforeEach, describe, expect, it, vi } from "vitest";
+import { application } from "~/application.server";
 import * as environment from "~/env.server";
 import { isOwnOrigin } from "~/middleware/same-origin.server";
 import * as health from "~/services/health.server";
 import * as people from "~/services/teams/find-person.server";
+import { makeServer } from "../../scripts/lib/serve.mjs";
 import { makeMember, makeTeam, tokenOf } from "../factories/people";
-import { call, ORIGIN } from "../setup/app";
+import { call, handle, ORIGIN } from "../setup/app";
 
 let cookie = "";
 let token = "";
@@ -90,6 +94,18 @@ describe("headers", () => {
   });
 });
 
+/** The status of an answer to a request whose headers go as they are. */
+function statusOver({ body, ...options }: RequestOptions & { body: string }): Promise<number | undefined> {
+  return new Promise((resolve, reject) => {
+    const sent = request({ host: "127.0.0.1", ...options }, (answer) => {
+      answer.resume();
+      answer.on("end", () => resolve(answer.statusCode));
+    });
+    sent.on("error", reject);
+    sent.end(body);
+  });
+}
+
 describe("unsafe requests", () => {
   const UNSAFE = ["POST", "PUT", "PATCH", "DELETE"];
   const FOREIGN: [string, string | null][] = [
@@ -121,16 +137,50 @@ describe("unsafe requests", () => {
     }
   });
 
+  it("with bodies are refused over the line as soon as they came (B01)", async () => {
+    const { server, listen, close } = makeServer({ application, handle, staticFolder: null });
+    await listen(0, "127.0.0.1");
+    const { port } = server.address() as AddressInfo;
+    const bodies: [string, string][] = [
+      ["application/x-www-form-urlencoded", "a=1"],
+      [
+        "multipart/form-data; boundary=b",
+        '--b\r\ncontent-disposition: form-data; name="a"\r\n\r\n1\r\n--b--\r\n',
+      ],
+      ["text/plain", "x".repeat(500_000)],
+    ];
+    try {
+      for (const origin of ["null", "foo", "https://evil.example", null]) {
+        for (const address of ["/login", "/files/upload"]) {
+          for (const [k, [type, body]] of bodies.entries()) {
+            const named = origin === null ? {} : { origin };
+            const headers = { "content-type": type, "content-length": body.length, cookie, ...named };
+            const method = k === 0 ? "DELETE" : "POST";
+            const sent = { method, headers, body, port, path: address };
+            expect(await statusOver(sent), `${method} ${address} ${type} from ${origin}`).toBe(403);
+          }
+        }
+      }
+    } finally {
+      await close(0);
+    }
+  });
+
   it.each([ORIGIN, "http://localhost:3000", "http://[::1]:3000"])("from %s are taken", async (origin) => {
     expect((await call("/theme", { form: { theme: "dark", back: "/methods" }, origin })).status).toBe(303);
   });
 
-  it("with a cookie need a page of ours even where they carry a token (B01)", async () => {
+  it("of the API are judged by their token alone, whatever cookies come with it (B01)", async () => {
     const path = "/api/v1/ensembles/aaaaaaaaaaaaaaaa/sifts";
     const body = "{}";
-    expect((await call(path, { method: "POST", token, cookie, origin: null, body })).status).toBe(403);
-    expect((await call(path, { method: "POST", token, origin: null, body })).status).toBe(404);
-    expect((await call(path, { method: "POST", origin: null, body })).status).toBe(401);
+    for (const jar of ["jar=1", cookie, undefined]) {
+      for (const origin of [null, "null", "https://evil.example"]) {
+        const ask = (method: string, more = {}) => call(path, { method, cookie: jar, origin, body, ...more });
+        expect((await ask("POST", { token })).status).toBe(404);
+        expect((await ask("DELETE", { token })).status).toBe(405);
+        expect((await ask("POST")).status).toBe(401);
+      }
+    }
   });
 
   it("on https are compared with the public address alone", () => {
@@ -143,6 +193,26 @@ describe("unsafe requests", () => {
 });
 
 describe("tokens and cookies", () => {
+  it("end in problem documents at every address of the API, those of the router's pages too", async () => {
+    for (const path of [
+      "/api/v1/ensembles/aaaaaaaaaaaaaaaa.data",
+      "/api/v1/ensembles.data",
+      "/API/v1/_.data",
+    ]) {
+      for (const [options, status] of [
+        [{ token }, 404],
+        [{ token, method: "POST", body: "{}" }, 404],
+        [{ cookie }, 401],
+      ] as const) {
+        const answer = await call(path, options);
+        expect([answer.status, answer.headers.get("content-type")], path).toEqual([
+          path.endsWith("a.data") && "method" in options ? 405 : status,
+          "application/problem+json; charset=utf-8",
+        ]);
+      }
+    }
+  });
+
   it("do not stand in for each other (D07)", async () => {
     expect((await call("/api/v1/ensembles", { cookie })).status).toBe(401);
     const page = await call(`/teams/${teamId}`, { token });

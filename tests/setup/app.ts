@@ -1,12 +1,14 @@
 import {
   matchRoutes,
   type RouteObject,
+  type RouterContextProvider,
   type ServerBuild,
   UNSAFE_withComponentProps as withComponentProps,
   UNSAFE_withErrorBoundaryProps as withErrorBoundaryProps,
 } from "react-router";
 import { application } from "~/application.server";
 import * as entry from "~/entry.server";
+import { isApiPath } from "~/middleware/api-path.server";
 import routeTable from "~/routes";
 
 interface RouteEntry {
@@ -91,7 +93,8 @@ function branchOf(pathname: string): string[] {
     rows
       .filter((row) => row.parentId === parentId)
       .map(({ id, path, index }) => (index ? { id, index: true } : { id, path, children: nest(id) }));
-  const matches = matchRoutes(nest("root"), pathname.replace(/\.data$/, "")) ?? [];
+  const asked = isApiPath(pathname) ? pathname : pathname.replace(/\.data$/, "");
+  const matches = matchRoutes(nest("root"), asked) ?? [];
   return ["root", ...matches.map(({ route }) => route.id ?? "")];
 }
 
@@ -171,8 +174,13 @@ export async function call(path: string, options: CallOptions = {}): Promise<Res
   const body = form ? new URLSearchParams(form) : init.body;
   const duplex = body instanceof ReadableStream ? { duplex: "half" as const } : {};
   const request = new Request(new URL(path, ORIGIN), { ...init, ...duplex, method, headers, body });
+  return handle(request, application.makeContext(address));
+}
+
+/** What the server gives a request to. */
+export async function handle(request: Request, context: RouterContextProvider): Promise<Response> {
   const handler = await handlerFor(new URL(request.url).pathname);
-  return handler(request, application.makeContext(address));
+  return handler(request, context);
 }
 
 /** The cookie that a response sets, as the next request sends it; null where it sets none or ends one. */
