@@ -106,7 +106,7 @@ function Settings({ team, series, chosen, settings, refused, found }: WindowsPag
     <Form
       key={JSON.stringify([chosen?.id, found.level, found.reference, settings, refused])}
       method="get"
-      className="mt-6 grid grid-cols-2 items-end gap-x-6 gap-y-4 border-y border-rule py-4 lg:grid-cols-4 xl:grid-cols-7 print:hidden"
+      className={`mt-6 grid grid-cols-2 gap-x-6 gap-y-4 border-y border-rule py-4 lg:grid-cols-4 xl:grid-cols-7 print:hidden ${Object.keys(refused).length > 0 ? "items-start" : "items-end"}`}
       onChange={(event) => {
         if (event.target instanceof HTMLSelectElement)
           void submit(event.currentTarget, { preventScrollReset: true });
