@@ -3,9 +3,11 @@ import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { newId } from "~/db/new-id.server";
 import { ensembles, links, logbook, mailQueue, teams } from "~/db/schema.server";
+import { NO_FILTER } from "~/lib/logbook/filter";
 import { endLink } from "~/services/links/end-link.server";
 import { newLinkSecret } from "~/services/links/link-secret";
 import { findLinks } from "~/services/links/list-links.server";
+import { exportLogbook, loadLogbook } from "~/services/logbook/load-logbook.server";
 import { CONTACT, freeze, link, makeSifted, personOf } from "../factories/editions";
 import { makeMember } from "../factories/people";
 import { makeLab, sifted, withJobs } from "../factories/upload";
@@ -151,6 +153,35 @@ describe("a live link", () => {
     expect(own).toHaveLength(1);
     expect(own[0]?.origin).toBeNull();
     expect(own[0]?.userId).toBeNull();
+  });
+});
+
+describe("what a guest takes", () => {
+  it("stands in the logbook once a day, a file and a link: who the link is for, no address (D06)", async () => {
+    const { secret } = await makeLiveLink({ label: "Takes files", sources: true });
+    const again = await makeLiveLink({ label: "Takes files" });
+    const take = (path: string, method = "GET") => call(`/e/${secret}/${path}`, { method });
+    await take("files/results.csv", "HEAD");
+    await Promise.all(Array.from({ length: 5 }, () => take("files/results.csv")));
+    for (const path of ["files/bundle.zip", "files/bundle.zip", "sources/0", "files/none.csv", "positions"]) {
+      await (await take(path)).arrayBuffer();
+    }
+    await call(`/e/${again.secret}/files/results.csv`);
+    const filter = { ...NO_FILTER, kind: "export" as const, who: "link" };
+    const book = await loadLogbook({ actor: actor(), ensembleId: at.ensembleId, filter });
+    const own = book.rows.filter(({ who }) => who === "Takes files");
+    expect(own.map(({ text }) => text).reverse()).toEqual([
+      `Took results.csv of edition ${number}`,
+      `Took bundle.zip of edition ${number}`,
+      expect.stringMatching(/^Took the source file .+\.xyz of edition/),
+      `Took results.csv of edition ${number}`,
+    ]);
+    expect(own[0]).toMatchObject({ by: "link", from: "guest", kind: "export" });
+    const csv = await exportLogbook({ actor: actor(), ensembleId: at.ensembleId, filter });
+    expect(csv).toContain(`Takes files,link,guest,export`);
+    expect(csv).toContain(`Took bundle.zip of edition ${number},for the first time that day`);
+    const kept = await db.select().from(logbook).where(eq(logbook.type, "link-exported"));
+    expect(kept.every(({ origin, userId }) => origin === null && userId === null)).toBe(true);
   });
 });
 

@@ -49,6 +49,14 @@ const WRITTEN: [LogbookEntry, string, string | null][] = [
     "Answered: eV",
     "In which unit? 1 frame released.",
   ],
+  [
+    {
+      type: "link-exported",
+      data: { linkId: "l", number: 2, prefix: "abcd", label: "Partner", file: "a.xyz", source: true },
+    },
+    "Took the source file a.xyz of edition 2",
+    "for the first time that day",
+  ],
   [{ type: "hold", data: { frame: 4, reason: "no minimum" } }, "Held frame 4", "no minimum"],
   [
     { type: "release", data: { frame: 4, reason: "it is one", heldFor: "by-hand" } },

@@ -218,6 +218,19 @@ export const logbookEntrySchema = z.discriminatedUnion("type", [
     data: z.object({ number: z.number(), prefix: z.string(), label: z.string(), opened: z.number() }),
   }),
   z.object({
+    /** The first time that day that a link gave that file out. */
+    type: z.literal("link-exported"),
+    data: z.object({
+      linkId: z.string(),
+      number: z.number(),
+      prefix: z.string(),
+      label: z.string(),
+      /** Name of the file; one of the edition, or an original one. */
+      file: z.string(),
+      source: z.boolean(),
+    }),
+  }),
+  z.object({
     type: z.literal("link-ended"),
     data: z.object({ number: z.number(), prefix: z.string(), label: z.string() }),
   }),
@@ -443,6 +456,7 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
     case "edition-exported":
     case "link-made":
     case "link-opened":
+    case "link-exported":
     case "link-ended":
       return handOverWords(entry);
     case "remark":
@@ -471,7 +485,7 @@ export function describeEntry(entry: LogbookEntry): { text: string; detail: stri
 
 type HandOverEntry = Extract<
   LogbookEntry,
-  { type: `edition-${string}` | `link-${"made" | "opened" | "ended"}` }
+  { type: `edition-${string}` | `link-${"made" | "opened" | "exported" | "ended"}` }
 >;
 
 const forWhom = (label: string) => (label === "" ? "" : ` for ${label}`);
@@ -512,6 +526,13 @@ function handOverWords(entry: HandOverEntry): { text: string; detail: string | n
       return {
         text: `Opened edition ${number}`,
         detail: opened === 1 ? "for the first time" : `${plural(opened, "time")} so far`,
+      };
+    }
+    case "link-exported": {
+      const { file, source, number } = entry.data;
+      return {
+        text: `Took ${source ? "the source file " : ""}${file} of edition ${number}`,
+        detail: "for the first time that day",
       };
     }
     case "link-ended":

@@ -8,6 +8,7 @@ describe("kinds of entries", () => {
     ["sign-in-failed", "sign-in"],
     ["link-days-set", "people"],
     ["link-opened", "link"],
+    ["link-exported", "export"],
     ["edition-verified", "edition"],
     ["edition-exported", "export"],
     ["release-refused", "held"],

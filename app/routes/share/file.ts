@@ -1,6 +1,6 @@
 import { openSharedFile } from "~/services/links/load-shared.server";
 import { sendDownload, sharedCall } from "./share-call.server";
 
-export const loader = sharedCall(async ({ secret, address, params }) =>
-  sendDownload(await openSharedFile({ secret, address, name: params.name ?? "" })),
+export const loader = sharedCall(async ({ secret, address, takes, params }) =>
+  sendDownload(await openSharedFile({ secret, address, takes, name: params.name ?? "" })),
 );

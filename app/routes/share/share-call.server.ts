@@ -5,6 +5,7 @@ import type { EditionDownload } from "~/services/editions/open-edition-file.serv
 import { forApi } from "~/services/http.server";
 
 interface RouteArgs {
+  request: Request;
   params: Record<string, string | undefined>;
   context: Readonly<RouterContextProvider>;
 }
@@ -13,14 +14,21 @@ interface RouteArgs {
 export interface SharedCall {
   secret: string;
   address: string;
+  /** False for HEAD, which takes nothing out. */
+  takes: boolean;
   params: Record<string, string | undefined>;
 }
 
 /** A file or data behind a link: whatever opens nothing is 404, ended links included. */
 export function sharedCall(answer: (call: SharedCall) => Promise<Response>) {
-  return ({ params, context }: RouteArgs): Promise<Response> =>
+  return ({ request, params, context }: RouteArgs): Promise<Response> =>
     forApi(context.get(requestIdContext), () =>
-      answer({ secret: params.token ?? "", address: context.get(addressContext), params }),
+      answer({
+        secret: params.token ?? "",
+        address: context.get(addressContext),
+        takes: request.method === "GET",
+        params,
+      }),
     );
 }
 

@@ -12,7 +12,7 @@ import { readSource } from "../ensembles/source-writer.server.ts";
 import { notFound } from "../http.server.ts";
 import { whileAllowed } from "../while-allowed.ts";
 import { linkSha } from "./link-secret.ts";
-import { noteOpening, openLink, openLiveLink } from "./open-link.server.ts";
+import { noteExport, noteOpening, openLink, openLiveLink } from "./open-link.server.ts";
 
 /** A line of the edition's part of the logbook: what was decided and when, by nobody's name. */
 export interface SharedEntry {
@@ -98,6 +98,8 @@ export async function loadShared(options: {
 interface Asked {
   secret: string;
   address: string;
+  /** False where only the head is asked for: nothing goes out. */
+  takes: boolean;
 }
 
 /** Throws once a link has ended: what it lets out is asked about again while it goes out. */
@@ -111,11 +113,14 @@ export async function openSharedFile(options: Asked & { name: string }): Promise
   const edition = await findEdition(grant.teamId, grant.editionId);
   const called = `${edition.content.ensemble.name} edition ${edition.number}`;
   const file = await openEditionFile(grant, options.name, called);
+  if (options.takes) {
+    await noteExport(grant, { number: edition.number, file: options.name, source: false });
+  }
   return { ...file, chunks: whileAllowed(file.chunks, () => stillLive(options.secret)) };
 }
 
 /** Coordinates of the most populated conformers behind a link. */
-export async function loadSharedPositions(options: Asked): Promise<Float64Array> {
+export async function loadSharedPositions(options: Omit<Asked, "takes">): Promise<Float64Array> {
   const grant = await openLiveLink(options.secret, options.address);
   return findPositions(grant.editionId);
 }
@@ -142,6 +147,7 @@ export async function openSharedSource(options: Asked & { position: number }): P
     .limit(1);
   const row = rows[0];
   if (row === undefined) throw notFound();
+  if (options.takes) await noteExport(grant, { number: edition.number, file: wanted.name, source: true });
   return {
     name: wanted.name,
     type: "application/octet-stream",

@@ -1,6 +1,6 @@
-import { eq, sql } from "drizzle-orm";
+import { and, eq, gte, sql } from "drizzle-orm";
 import { inTransaction } from "../../db/client.server.ts";
-import { editions, links } from "../../db/schema.server.ts";
+import { editions, links, logbook } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { accessBySecret, type EndedLink, type LinkGrant } from "../auth/access.server.ts";
 import { addressRange, takeAttempt } from "../auth/throttle.server.ts";
@@ -76,4 +76,43 @@ export async function noteOpening(grant: LinkGrant): Promise<void> {
       },
     );
   });
+}
+
+/**
+ * Tells the logbook that a link gave a file out: the first time each day (UTC), since a download that is repeated or cut is
+ * the same export. No address, nothing of the person.
+ *
+ * @param taken.file its name; `source` for an original file
+ */
+export async function noteExport(
+  grant: LinkGrant,
+  taken: { number: number; file: string; source: boolean },
+): Promise<void> {
+  const today = new Date(`${new Date().toISOString().slice(0, 10)}T00:00:00.000Z`);
+  await inTransaction(async (tx) => {
+    // Two downloads at the same moment wait for each other, so that one of them finds the entry of the other.
+    await tx.select({ id: links.id }).from(links).where(eq(links.id, grant.linkId)).for("update");
+    const known = await tx
+      .select({ data: logbook.data })
+      .from(logbook)
+      .where(
+        and(
+          eq(logbook.ensembleId, grant.ensembleId),
+          eq(logbook.teamId, grant.teamId),
+          eq(logbook.type, "link-exported"),
+          gte(logbook.createdAt, today),
+        ),
+      );
+    const entry = {
+      type: "link-exported" as const,
+      data: { linkId: grant.linkId, prefix: grant.prefix, label: grant.label, ...taken },
+    };
+    if (known.some(({ data }) => isSameExport(data, entry.data))) return;
+    await writeEntry(tx, grant, { userId: null, tokenId: null }, entry);
+  });
+}
+
+function isSameExport(data: unknown, taken: { linkId: string; file: string; source: boolean }): boolean {
+  if (typeof data !== "object" || data === null) return false;
+  return (["linkId", "file", "source"] as const).every((key) => Reflect.get(data, key) === taken[key]);
 }

@@ -1,4 +1,4 @@
-import { and, count, desc, eq, gte, inArray, isNotNull, isNull, lt, type SQL } from "drizzle-orm";
+import { and, count, desc, eq, gte, inArray, isNotNull, isNull, lt, notInArray, type SQL } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { apiTokens, ensembles, logbook, users } from "../../db/schema.server.ts";
 import { textCell } from "../../lib/export/csv.ts";
@@ -15,6 +15,9 @@ const BATCH = 1_000;
 const MOST_SEARCHED = 50_000;
 
 const ALL_TYPES: readonly LogbookType[] = logbookEntrySchema.options.map((option) => option.shape.type.value);
+
+/** What whoever holds a link does. */
+const BY_GUESTS: readonly LogbookType[] = ["link-opened", "link-exported"];
 
 interface Found {
   id: number;
@@ -70,7 +73,8 @@ function labelOf(data: unknown): string {
 }
 
 function whoOf(found: Found): Pick<LogbookRow, "who" | "by" | "from"> {
-  if (found.type === "link-opened") return { who: labelOf(found.data), by: "link", from: "guest" };
+  if (BY_GUESTS.some((type) => type === found.type))
+    return { who: labelOf(found.data), by: "link", from: "guest" };
   if (found.tokenId !== null) return { who: `Token ${found.tokenPrefix ?? ""}…`, by: "token", from: "API" };
   if (found.userId !== null)
     return { who: found.userName ?? "A former member", by: "person", from: "browser" };
@@ -109,9 +113,9 @@ function whereOf({ kind, who, when }: LogbookFilter, now: Date): SQL | undefined
       : who === "token"
         ? isNotNull(logbook.tokenId)
         : who === "link"
-          ? eq(logbook.type, "link-opened")
+          ? inArray(logbook.type, [...BY_GUESTS])
           : who === "product"
-            ? and(isNull(logbook.userId), isNull(logbook.tokenId))
+            ? and(isNull(logbook.userId), isNull(logbook.tokenId), notInArray(logbook.type, [...BY_GUESTS]))
             : and(eq(logbook.userId, who), isNull(logbook.tokenId)),
   );
 }

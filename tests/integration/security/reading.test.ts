@@ -68,7 +68,7 @@ function addressOf(pattern: string): string {
 }
 
 /** Entries that a download or an opened link leaves in the logbook: they tell of looking, and change nothing. */
-const NOTES = /"type","(export|edition-exported|source-downloaded|link-opened)"/;
+const NOTES = /"type","(export|edition-exported|source-downloaded|link-opened|link-exported)"/;
 
 describe("GET and HEAD", () => {
   it("have live secrets of letters to look at", () => {
