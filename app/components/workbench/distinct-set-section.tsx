@@ -146,7 +146,7 @@ export function DistinctSetSection() {
             key={cancelled}
             ensemble={ensemble}
             request={request}
-            words={`${capital(recipeLine(sift.recipe, null))}.`}
+            words={`${sift.recipe.levelName === null ? capital(recipeLine(sift.recipe, null)) : recipeLine(sift.recipe, null)}.`}
             onDraft={setDraft}
             onAsk={(next, settled) => {
               if (!ensemble.mayCompute) return;

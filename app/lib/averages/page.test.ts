@@ -118,7 +118,7 @@ describe("words", () => {
     expect(text).toBe(
       "An NOE sees d H16–H26 as 5.50\u00a0Å at 298.15\u00a0K. c2 moves that figure most: 16\u00a0% of the ensemble, 59\u00a0% of the average. Without it: 6.19\u00a0Å.",
     );
-    expect(second).toBe("One property. D H16–H26 covers 97.2\u00a0% of the population.");
+    expect(second).toBe("One property. d H16–H26 covers 97.2\u00a0% of the population.");
   });
   it("say why there is no figure", () => {
     expect(told({ value: null, covered: 0.541, state: "not-covered" }).text).toContain(

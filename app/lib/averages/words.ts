@@ -74,21 +74,21 @@ export function averagesFinding(
 function headline(property: PropertyValues, average: Average, temperatureK: number): string {
   const at = `at ${withUnit(formatTemperature(temperatureK), "K")}`;
   if (average.state === "not-covered") {
-    return `${capital(property.name)} is known for ${formatPercent(average.covered, 1)} of the population only and is not averaged.`;
+    return `${property.name} is known for ${formatPercent(average.covered, 1)} of the population only and is not averaged.`;
   }
   if (average.state === "zero-distance") {
-    return `${capital(property.name)} holds a distance of 0, which no mean of r to the power −6 or −3 can take: look at its table.`;
+    return `${property.name} holds a distance of 0, which no mean of r to the power −6 or −3 can take: look at its table.`;
   }
   if (average.value === null) {
     return `The directions of ${property.name} cancel ${at} (R ${fixed(average.resultant, 2)}): it has a distribution, not a mean.`;
   }
   if (average.fixed) {
-    return `${capital(property.name)} is 0, fixed by symmetry: the molecule is achiral, and each shape comes in both hands.`;
+    return `${property.name} is 0, fixed by symmetry: the molecule is achiral, and each shape comes in both hands.`;
   }
   const value = valueWords(property, average.value);
   return property.rule === "r-6"
     ? `An NOE sees ${property.name} as ${value} ${at}.`
-    : `${capital(property.name)} averages to ${value} ${at}.`;
+    : `${property.name} averages to ${value} ${at}.`;
 }
 
 function moverWords({ property, average, mover }: Told): string | null {
@@ -117,7 +117,8 @@ function coverageWords(all: readonly { property: PropertyValues; average: Averag
       ([quantity, groups]) => `${quantity} of ${plural(groups, "group")} of equivalent atoms`,
     ),
   ];
-  const count = `${capital(counts.join("; "))}.`;
+  // Names stand as they were written, at the start of a sentence too.
+  const count = `${scalars === 0 ? counts.join("; ") : capital(counts.join("; "))}.`;
   const partly = all.filter(({ average }) => average.covered < 1 && average.state !== "not-covered");
   const refused = all.filter(({ average }) => average.state === "not-covered");
   const parts = [
@@ -125,13 +126,13 @@ function coverageWords(all: readonly { property: PropertyValues; average: Averag
       .slice(0, 3)
       .map(
         ({ property, average }) =>
-          `${capital(property.name)} covers ${formatPercent(average.covered, 1)} of the population.`,
+          `${property.name} covers ${formatPercent(average.covered, 1)} of the population.`,
       ),
     ...refused
       .slice(0, 3)
       .map(
         ({ property, average }) =>
-          `${capital(property.name)} covers ${formatPercent(average.covered, 1)} and is not averaged.`,
+          `${property.name} covers ${formatPercent(average.covered, 1)} and is not averaged.`,
       ),
   ];
   const more = Math.max(0, partly.length - 3) + Math.max(0, refused.length - 3);

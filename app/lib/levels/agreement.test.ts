@@ -40,6 +40,8 @@ describe("six conformers, worked by hand", () => {
       levelLowest: 1,
       rankAtReference: 2,
       aboveAtReference: 0.4,
+      levelTies: [1],
+      referenceTies: [0],
       same: false,
     });
     expect(meetLowest([0, 0], [1, 0]).same).toBe(true);
@@ -281,6 +283,36 @@ describe("the story in one sentence", () => {
     expect(same.second).toContain("agree on the whole order");
     expect(tell([0, 3], [1, 0], ["A", "B"], String).text).toContain("takes all 2 conformers");
     expect(tell([0], [1], ["A", "B"], String).text).toContain("nothing to compare");
+  });
+
+  it("tells ties at the minimum and levels without any order", () => {
+    const told = (level: number[], reference: number[]) =>
+      plain(tell(level, reference, ["A", "B"], (i) => `c${i + 1}`).text).split(";")[0];
+    expect(told([1, 1, 1], [0, 1, 2])).toBe(
+      "A gives all 3 conformers the same energy and finds no lowest one",
+    );
+    expect(told([0, 1, 2], [1, 1, 1])).toBe(
+      "B gives all 3 conformers the same energy, so there is no lowest one for A to find",
+    );
+    expect(told([2, 2], [1, 1])).toContain("Both A and B give all 2 conformers the same energy");
+    expect(told([0, 0, 2], [0, 1, 2])).toBe(
+      "A does not tell the lowest conformer of B, c1, from 1 other that it puts as low",
+    );
+    expect(told([0, 1, 2], [0, 0, 2])).toBe(
+      "A finds one of the 2 conformers that tie as the lowest of B, c1, and puts the others higher",
+    );
+    expect(told([0, 0, 2], [0, 0, 2])).toBe(
+      "A and B have the same 2 conformers tied as the lowest, c1 and c2",
+    );
+    expect(told([1, 0, 0, 2], [0, 1, 0, 2])).toBe(
+      "c3 is among the 2 conformers that tie as the lowest of A and the 2 conformers that tie as the lowest of B",
+    );
+    expect(told([1, 0, 0], [0, 1, 1])).toMatch(
+      /^A puts the lowest conformer of B, c1, 3rd, 1.00 kcal\/mol up, and prefers c2 and c3, tied, which hold/,
+    );
+    expect(told([1, 2, 0], [0, 0, 1])).toMatch(
+      /^A puts c1, the first of 2 conformers that tie as the lowest of B, 2nd, 1.00 kcal\/mol up, and prefers c3/,
+    );
   });
 
   it("counts in words", () => {

@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { cheapAndBetter, chooseLevels, kindOfLevel } from "./better-level.ts";
+import { cheapAndBetter, chooseLevels, commonPair, kindOfLevel } from "./better-level.ts";
 
 // Which name belongs to which kind of method: common practice, no source.
 describe("kindOfLevel", () => {
@@ -31,6 +31,7 @@ describe("kindOfLevel", () => {
     ["CCSD(T)/CBS//MP2/cc-pVTZ", "coupled cluster"],
     ["published", "reference"],
     ["Reference energies", "reference"],
+    ["ref", "reference"],
     ["experiment", "reference"],
   ])("takes %s as %s", (name, kind) => expect(kindOfLevel(name)).toBe(kind));
 
@@ -50,7 +51,27 @@ const names = (found: ReturnType<typeof chooseLevels<{ id: string; name: string 
   found.reference?.name,
 ];
 
+describe("commonPair", () => {
+  it("is the pair that the ensembles propose themselves, never the same data twice", () => {
+    const own = named("published", "published_rel_kcal_mol", "MMFF94", "B3LYP");
+    expect(commonPair([own])).toEqual(names(chooseLevels(own, { level: null, reference: null })));
+    expect(commonPair([own])).toEqual(["MMFF94", "published_rel_kcal_mol"]);
+  });
+
+  it("prefers what more ensembles have", () => {
+    const three = named("MMFF94", "B3LYP", "CCSD(T)");
+    const two = named("MMFF94", "B3LYP");
+    expect(commonPair([three, three, three, two, two])).toEqual(["MMFF94", "B3LYP"]);
+    expect(commonPair([three, named("MMFF94")])).toEqual(["MMFF94", "CCSD(T)"]);
+    expect(commonPair([[], named("MMFF94")])).toBeNull();
+  });
+});
+
 describe("cheapAndBetter", () => {
+  it("takes a column called ref as the reference, whatever came first", () => {
+    expect(names(cheapAndBetter(named("ref", "cheap")))).toEqual(["cheap", "ref"]);
+  });
+
   it("judges the cheapest by the best, whatever came first", () => {
     expect(names(cheapAndBetter(named("CCSD(T)/CBS", "MMFF94")))).toEqual(["MMFF94", "CCSD(T)/CBS"]);
     expect(names(cheapAndBetter(named("B3LYP", "MP2", "PM6", "HF")))).toEqual(["PM6", "MP2"]);

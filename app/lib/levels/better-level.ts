@@ -15,7 +15,7 @@ export type LevelKind = (typeof LEVEL_KINDS)[number];
  * "CCSD(T)/CBS // MP2" is coupled cluster. A name begins and ends where letters and figures do not go on.
  */
 const NAMES: readonly (readonly [LevelKind, RegExp])[] = [
-  ["reference", word("published|reference|experiment(?:al)?|exptl?|measured")],
+  ["reference", word("published|ref(?:erence)?|experiment(?:al)?|exptl?|measured")],
   [
     "coupled cluster",
     word(
@@ -91,6 +91,30 @@ export function cheapAndBetter<T extends { name: string }>(
     if (other) return { level: other.level, reference: best.level };
   }
   return { level: first.level, reference: ranked.length > 1 ? ranked.at(-1)!.level : null };
+}
+
+/**
+ * The pair to propose for several molecules at once: of the pairs that single ensembles would propose the one that most
+ * ensembles have, of equal ones that which more of them propose.
+ *
+ * @param lists levels of each ensemble, in order of arrival
+ * @returns names, the level to be judged in front; null where no ensemble has two levels
+ * @example commonPair([[{ name: "published" }, { name: "MMFF94" }]]) // ["MMFF94", "published"]
+ */
+export function commonPair(lists: readonly (readonly { name: string }[])[]): [string, string] | null {
+  const votes = new Map<string, { pair: [string, string]; having: number; votes: number }>();
+  for (const list of lists) {
+    const { level, reference } = cheapAndBetter(list);
+    if (level === null || reference === null) continue;
+    const pair: [string, string] = [level.name, reference.name];
+    const key = JSON.stringify(pair);
+    const found = votes.get(key) ?? { pair, having: 0, votes: 0 };
+    votes.set(key, { ...found, votes: found.votes + 1 });
+  }
+  for (const names of lists.map((list) => new Set(list.map(({ name }) => name)))) {
+    for (const vote of votes.values()) if (vote.pair.every((name) => names.has(name))) vote.having += 1;
+  }
+  return [...votes.values()].sort((a, b) => b.having - a.having || b.votes - a.votes)[0]?.pair ?? null;
 }
 
 /**

@@ -58,6 +58,9 @@ export interface LowestMeeting {
   levelLowest: number;
   rankAtReference: number;
   aboveAtReference: number;
+  /** All that share the lowest energy of each level, in order. */
+  levelTies: number[];
+  referenceTies: number[];
   /** One conformer is lowest at both (ties count). */
   same: boolean;
 }
@@ -73,6 +76,9 @@ export function meetLowest(level: ArrayLike<number>, reference: ArrayLike<number
   const levelLowest = lowestPlace(level);
   const atLevel = placeRanks(level);
   const atReference = placeRanks(reference);
+  const lowestOf = (ranks: ArrayLike<number>) =>
+    Array.from(ranks, (rank, place) => (rank === 1 ? place : -1)).filter((place) => place >= 0);
+  const [levelTies, referenceTies] = [lowestOf(atLevel), lowestOf(atReference)];
   return {
     referenceLowest,
     rankAtLevel: atLevel[referenceLowest]!,
@@ -80,7 +86,9 @@ export function meetLowest(level: ArrayLike<number>, reference: ArrayLike<number
     levelLowest,
     rankAtReference: atReference[levelLowest]!,
     aboveAtReference: reference[levelLowest]! - reference[referenceLowest]!,
-    same: atLevel[referenceLowest] === 1 || atReference[levelLowest] === 1,
+    levelTies,
+    referenceTies,
+    same: levelTies.some((place) => atReference[place] === 1),
   };
 }
 

@@ -1,5 +1,5 @@
 import { formatCount, formatEnergy, plural, withUnit } from "../format.ts";
-import { shareWords } from "../workbench/findings.ts";
+import { joinWords, shareWords } from "../workbench/findings.ts";
 import type { LevelComparison } from "./compare.ts";
 import type { LowestMeeting } from "./ranking.ts";
 
@@ -26,7 +26,7 @@ export function comparisonStory(input: {
   meeting: LowestMeeting;
   window: { share: number; kcal: number; count: number };
 }): Story {
-  const { level, reference, nameOf, comparison, meeting, window } = input;
+  const { level, reference, comparison, meeting, window } = input;
   const { n } = comparison;
   if (n === 1) {
     return {
@@ -34,19 +34,65 @@ export function comparisonStory(input: {
       second: "Bring the energies of the other conformers to see how far the levels agree.",
     };
   }
-  const lowest = nameOf(meeting.referenceLowest);
-  const ownest = nameOf(meeting.levelLowest);
-  const own = shareWords(comparison.referencePopulations[meeting.levelLowest] ?? 0);
-  const first = meeting.same
-    ? `${level} finds the lowest conformer of ${reference}, ${meeting.aboveAtLevel === 0 ? lowest : ownest}`
-    : `${level} puts the lowest conformer of ${reference}, ${lowest}, ${ordinal(meeting.rankAtLevel)}, ` +
-      `${kcal(meeting.aboveAtLevel)} up, and prefers ${ownest}, which holds ${own} at ${reference}`;
+  const first = constantWords(input) ?? (meeting.same ? sameLowest(input) : otherLowest(input));
   const keep = `to keep ${shareWords(window.share)} of the ${reference} population`;
   const carry =
     window.count === n
       ? `${keep} takes all ${formatCount(n)} conformers, ${kcal(window.kcal)} of ${level}`
       : `${keep}, carry ${kcal(window.kcal)} of ${level}: ${formatCount(window.count)} of ${formatCount(n)} conformers`;
   return { text: `${first}; ${carry}.`, second: agreementWords(comparison) };
+}
+
+type StoryInput = Parameters<typeof comparisonStory>[0];
+
+/** A level that gives all the same energy has no lowest conformer and no order. */
+function constantWords({ level, reference, comparison, meeting }: StoryInput): string | null {
+  const { n } = comparison;
+  const [flat, flatReference] = [meeting.levelTies.length === n, meeting.referenceTies.length === n];
+  const all = `all ${formatCount(n)} conformers the same energy`;
+  if (flat && flatReference)
+    return `Both ${level} and ${reference} give ${all}, so there is no order to compare`;
+  if (flat) return `${level} gives ${all} and finds no lowest one`;
+  return flatReference ? `${reference} gives ${all}, so there is no lowest one for ${level} to find` : null;
+}
+
+/** Both have a conformer in common among their lowest. */
+function sameLowest({ level, reference, nameOf, meeting }: StoryInput): string {
+  const { levelTies, referenceTies } = meeting;
+  const common = levelTies.filter((place) => referenceTies.includes(place));
+  const names = listed(common.map(nameOf));
+  const tied = (ties: readonly number[], name: string) =>
+    `the ${formatCount(ties.length)} conformers that tie as the lowest of ${name}`;
+  if (levelTies.length === 1 && referenceTies.length === 1)
+    return `${level} finds the lowest conformer of ${reference}, ${names}`;
+  if (levelTies.length === 1)
+    return `${level} finds one of ${tied(referenceTies, reference)}, ${names}, and puts the others higher`;
+  if (referenceTies.length === 1)
+    return `${level} does not tell the lowest conformer of ${reference}, ${names}, from ${plural(levelTies.length - 1, "other")} that it puts as low`;
+  return common.length === levelTies.length && common.length === referenceTies.length
+    ? `${level} and ${reference} have the same ${formatCount(common.length)} conformers tied as the lowest, ${names}`
+    : `${names} ${common.length === 1 ? "is" : "are"} among ${tied(levelTies, level)} and ${tied(referenceTies, reference)}`;
+}
+
+/** No conformer is lowest at both. */
+function otherLowest({ level, reference, nameOf, comparison, meeting }: StoryInput): string {
+  const { levelTies, referenceTies } = meeting;
+  const held = levelTies.reduce((sum, place) => sum + (comparison.referencePopulations[place] ?? 0), 0);
+  const prefers =
+    levelTies.length === 1
+      ? `prefers ${nameOf(meeting.levelLowest)}, which holds ${shareWords(held)} at ${reference}`
+      : `prefers ${listed(levelTies.map(nameOf))}, tied, which hold ${shareWords(held)} at ${reference}`;
+  const up = `${ordinal(meeting.rankAtLevel)}, ${kcal(meeting.aboveAtLevel)} up`;
+  return referenceTies.length === 1
+    ? `${level} puts the lowest conformer of ${reference}, ${nameOf(meeting.referenceLowest)}, ${up}, and ${prefers}`
+    : `${level} puts ${nameOf(meeting.referenceLowest)}, the first of ${formatCount(referenceTies.length)} conformers that tie as the lowest of ${reference}, ${up}, and ${prefers}`;
+}
+
+/** Up to three names, the others counted. */
+function listed(names: readonly string[]): string {
+  return names.length <= 3
+    ? joinWords(names)
+    : `${names.slice(0, 2).join(", ")} and ${formatCount(names.length - 2)} more`;
 }
 
 function agreementWords({ n, kendall, populationOverlap, mad, max }: LevelComparison): string {

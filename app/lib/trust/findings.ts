@@ -128,7 +128,7 @@ function populationSentence(
       ? null
       : `The ${top.count === 1 ? "most populated shape holds" : `${countWord(top.count)} likeliest shapes hold`} between ${formatPercent(top.low)} and ${formatPercent(top.high)} of the ensemble`;
   const lowest = settled ? `${lowestName(input)} is the lowest` : "which shape is the lowest is not settled";
-  return held === null ? `${capital(lowest)}.` : `${held}; ${lowest}.`;
+  return held === null ? `${settled ? lowest : capital(lowest)}.` : `${held}; ${lowest}.`;
 }
 
 function lowestName({ names, error }: TrustInput): string {

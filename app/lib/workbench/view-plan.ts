@@ -1,4 +1,4 @@
-import { formatCount, formatRmsd, plural, withUnit } from "../format.ts";
+import { capital, formatCount, formatRmsd, plural, withUnit } from "../format.ts";
 import type { ViewMode } from "../url-state.ts";
 import { byPopulation, type ConformerRow, type FrameRole } from "./conformers.ts";
 import { joinWords } from "./findings.ts";
@@ -119,7 +119,8 @@ function strangerCaption(
 ): { strong: string; rest: string } {
   const [first, second] = frames;
   if (first === undefined) return { strong: "Nothing chosen", rest: "select a conformer in the table" };
-  const upper = (text: string) => text.charAt(0).toUpperCase() + text.slice(1);
+  // A conformer keeps its name: C1 is an atom.
+  const upper = (text: string) => (text.startsWith("frame ") ? capital(text) : text);
   if (second === undefined) {
     const role = roles.get(first);
     if (held.has(first)) return { strong: upper(name(first)), rest: "held" };

@@ -1,4 +1,4 @@
-import { cheapAndBetter } from "../../lib/levels/better-level.ts";
+import { commonPair } from "../../lib/levels/better-level.ts";
 import { chooseWeights } from "../../lib/thermo/populations.ts";
 import { ENERGY_UNITS, kcalPer } from "../../lib/units.ts";
 import type { LevelView } from "../../lib/views.ts";
@@ -36,7 +36,7 @@ export interface SeriesLevels {
  * Two levels over all molecules of a series, matched by the names of the levels.
  *
  * @param options.series id of a series; all of the team where left out
- * @param options.level, options.reference names; the two that most ensembles have together where left out
+ * @param options.level, options.reference names; where left out the pair that the ensembles propose and most of them have
  */
 export async function loadSeriesLevels(options: {
   actor: Actor;
@@ -48,7 +48,7 @@ export async function loadSeriesLevels(options: {
   const rows = await listEnsembles(options);
   const names = countNames(rows.map((row) => row.levels.map((level) => level.name)));
   const known = (name: string | undefined) => names.find((one) => one.name === name)?.name;
-  const proposed = commonPair(rows.map((row) => row.levels));
+  const proposed = commonPair(rows.map((row) => [...row.levels].sort((a, b) => a.ordinal - b.ordinal)));
   const level = known(options.level) ?? proposed?.find((name) => name !== options.reference) ?? null;
   const reference = known(options.reference) ?? proposed?.toReversed().find((name) => name !== level) ?? null;
   const found: SeriesLevels = { names, level, reference, molecules: [], left: [] };
@@ -77,24 +77,6 @@ function countNames(lists: readonly string[][]): SeriesLevels["names"] {
   return Array.from(counts, ([name, ensembles]) => ({ name, ensembles })).sort(
     (a, b) => b.ensembles - a.ensembles || (a.name < b.name ? -1 : 1),
   );
-}
-
-/** The two levels that most ensembles have together, the one to be judged in front. */
-function commonPair(lists: readonly { name: string; ordinal: number }[][]): [string, string] | null {
-  const counts = new Map<string, { pair: [string, string]; n: number }>();
-  for (const list of lists) {
-    const inOrder = [...list].sort((a, b) => a.ordinal - b.ordinal);
-    for (const [k, a] of inOrder.entries()) {
-      for (const b of inOrder.slice(k + 1)) {
-        const { level, reference } = cheapAndBetter([a, b]);
-        const pair: [string, string] = [(level ?? a).name, (reference ?? b).name];
-        const key = JSON.stringify(pair);
-        const found = counts.get(key) ?? { pair, n: 0 };
-        counts.set(key, { ...found, n: found.n + 1 });
-      }
-    }
-  }
-  return [...counts.values()].sort((a, b) => b.n - a.n)[0]?.pair ?? null;
 }
 
 async function loadMolecule(
