@@ -81,6 +81,10 @@ function Shell() {
         recipe on the same accepted frames is the same sift. A job that was cut off is simply run again.
       </p>
       <Listing label="push-ensembles.sh" text={push} />
+      <p>
+        Each file’s JSON line and the exit code say which it was: taken (0), waiting for somebody to look at
+        held frames or open questions (3), refused (1), or unsent and to be run again (4).
+      </p>
       <p>In a job array each task sends its own file; the name of the series keeps them together:</p>
       <Listing
         label="One task of a job array"
