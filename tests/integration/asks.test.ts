@@ -427,6 +427,87 @@ describe("X12 and S21, several molecules", () => {
   });
 });
 
+describe("S23, several configurations", () => {
+  const haloform = (sign: 1 | -1, energy: number) =>
+    record(`m${energy}`, {
+      atoms: [
+        { symbol: "C", at: [0, 0, 0] },
+        { symbol: "H", at: [0, 0, 1.09] },
+        { symbol: "F", at: [1.27, 0, -0.42 + energy / 1000] },
+        { symbol: "Cl", at: [-0.83, 1.44 * sign, -0.55] },
+        { symbol: "Br", at: [-0.91, -1.58 * sign, -0.62] },
+      ],
+      bonds: [2, 3, 4, 5].map((k) => [1, k, 1] as const),
+      data: `> <E>\n${energy}\n\n`,
+    });
+  const content = (tag: number, minority: 1 | -1 = -1) =>
+    ([1, 1, minority, 1, 1] as const).map((sign, k) => haloform(sign, tag + k)).join("");
+  const take = (tag: number) =>
+    takenIn(token, [{ name: `s23-${tag}.sdf`, content: content(tag) }], { ...fields, energyFrom: "field:E" });
+  const heldOf = ({ intake }: EnsembleAnswer) =>
+    intake.messages
+      .filter(({ code, severity }) => code === "X40" && severity === "hold")
+      .map(({ frame }) => frame);
+  const reread = async (id: string, energyUnit: string) => {
+    const again = await post(token, `/ensembles/${id}/reread`, {
+      ...fields,
+      energyUnit,
+      energyFrom: "field:E",
+    });
+    expect(again.status).toBe(200);
+    return ensemble(id);
+  };
+
+  it("lets another one be the ensemble, for good", async () => {
+    const taken = await take(10);
+    expect(taken.intake).toMatchObject({ accepted: 4, held: 1 });
+    expect(heldOf(taken)).toEqual([3]);
+    expect(question(taken, "configuration")).toMatchObject({
+      code: "S23",
+      options: [
+        { id: "frame:1", text: expect.stringMatching(/^C1 is [RS]$/) },
+        { id: "frame:3", text: expect.stringMatching(/^C1 is [RS]$/) },
+      ],
+    });
+    // A single frame of another configuration is never let in.
+    expect((await post(token, `/ensembles/${taken.id}/frames/3/release`, { reason: "no" })).status).toBe(409);
+    await answer(taken.id, { configuration: "frame:3" });
+    const now = await ensemble(taken.id);
+    expect(now.intake).toMatchObject({ accepted: 1, held: 4, questions: [] });
+    expect(heldOf(now)).toEqual([1, 2, 4, 5]);
+    expect(now.levels).toMatchObject([{ count: 1 }]);
+    expect((await post(token, `/ensembles/${taken.id}/frames/1/release`, { reason: "no" })).status).toBe(409);
+    expect((await reread(taken.id, "kJ/mol")).intake).toMatchObject({ accepted: 1, held: 4, questions: [] });
+    expect(heldOf(await ensemble(taken.id))).toEqual([1, 2, 4, 5]);
+  });
+
+  it("is confirmed without reading again, and stays so when it is", async () => {
+    const taken = await take(20);
+    expect(await answer(taken.id, { configuration: "frame:1" })).toMatchObject({
+      accepted: 4,
+      held: 1,
+      questions: [],
+    });
+    expect((await reread(taken.id, "kJ/mol")).intake).toMatchObject({ accepted: 4, held: 1, questions: [] });
+    // Another answer now would be another ensemble.
+    const other = { answers: [{ id: "configuration", option: "frame:3" }] };
+    expect((await post(token, `/ensembles/${taken.id}/answers`, other)).status).toBe(409);
+  });
+
+  it("waits for nobody, and a frame of XYZ is held without a question (X40)", async () => {
+    const taken = await take(30);
+    expect((await reread(taken.id, "kJ/mol")).intake.questions).toMatchObject([{ id: "configuration" }]);
+    const atoms = (sign: number) => [
+      ...["C 0 0 0", "H 0 0 1.09", "F 1.27 0 -0.42"],
+      ...[`Cl -0.83 ${1.44 * sign} -0.55`, `Br -0.91 ${-1.58 * sign} -0.62`],
+    ];
+    const xyz = [1, 1, -1, 1, 1].map((sign, k) => frame(`-1.${k} hands`, atoms(sign))).join("");
+    const held = await takenIn(token, [{ name: "hands.xyz", content: xyz }], fields);
+    expect(held.intake).toMatchObject({ accepted: 4, held: 1, questions: [] });
+    expect(heldOf(held)).toEqual([3]);
+  });
+});
+
 describe("S12, hydrogens without coordinates", () => {
   const ethanol = (by: number) =>
     record("ethanol", {

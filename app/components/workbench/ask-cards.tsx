@@ -5,6 +5,7 @@ import { TextField } from "~/components/ui/field";
 import { WithFormulas } from "~/components/ui/formula";
 import { QuestionCard, QuestionOption } from "~/components/ui/question-card";
 import { ABSENT, fixed, formatEnergy, withUnit } from "~/lib/format";
+import { isEnsembleAsk } from "~/lib/intake/reading-choices";
 import { readAskId } from "~/lib/intake/reading-questions";
 import type { IntakeQuestion, QuestionOption as Option } from "~/lib/intake/report";
 import { moreMayFollow } from "~/lib/workbench/findings";
@@ -138,6 +139,9 @@ function buttonWords(question: IntakeQuestion, chosen: Option | undefined): stri
   if (question.code === "level") return "Name the level";
   if (!chosen) return "Confirm the choice";
   if (question.id === "group") return `${chosen.proposed ? "Keep" : "Take"} ${chosen.text}`;
+  if (question.id === "configuration") {
+    return chosen.proposed ? "Keep this configuration" : "Take this configuration";
+  }
   if (chosen.id === "comma") return "Read the comma as a decimal point";
   if (readAskId(question.id)) return chosen.id === "hold" ? "Keep them held" : chosen.text;
   if (chosen.id === "none") return "Take the structures without energies";
@@ -147,7 +151,8 @@ function buttonWords(question: IntakeQuestion, chosen: Option | undefined): stri
 function footWords(question: IntakeQuestion): string {
   if (question.code === "energy-unit") return "The factor is printed in every report.";
   if (question.code === "level") return "It keeps one hue and marker wherever it appears.";
-  if (question.id === "group") return "The others stay held; each can become an ensemble of its own.";
+  if (isEnsembleAsk(readAskId(question.id)?.ask))
+    return "The others stay held; each can become an ensemble of its own.";
   if (readAskId(question.id)) return "The files are read again with this answer.";
   return "One rule for all frames.";
 }

@@ -3,6 +3,7 @@ import { hillFormula } from "../chem/formula.ts";
 import type { Configuration } from "../chem/stereo.ts";
 import { type StatedOrders, statedOrders } from "../sdf/orders.ts";
 import { type Graph, makeGraph } from "../structure.ts";
+import type { ConfigurationChoice, ConfigurationClass } from "./configurations.ts";
 import { CopyFinder } from "./copies.ts";
 import { FrameKinds } from "./frame-kinds.ts";
 import type { ClassifierFrame, FrameRecord, FrameVerdict, MoleculeGroup } from "./frame-record.ts";
@@ -30,6 +31,8 @@ export interface Classification {
   messages: IntakeMessage[];
   /** The molecules that the frames show, the one with most frames first; of equal ones that met first. */
   molecules: MoleculeChoice[];
+  /** The configurations in which they hold the group's molecule, the group's first; none where there is but one. */
+  configurations: ConfigurationChoice[];
   /** Orders of the group's bonds, with charges and radicals, as the files state them; null where they do not. */
   table: Required<StatedOrders> | null;
 }
@@ -137,8 +140,16 @@ export class FrameClassifier {
    *
    * @param options.preferFrames frames that decide alone, where a person picks another group
    * @param options.like a frame of the molecule that a person picks: all frames of it decide
+   * @param options.configuration of the group's molecule: that of a frame that a person picks, or that of most frames
+   *   also where the group is given
    */
-  finish(options: { preferFrames?: readonly number[]; like?: number } = {}): Classification {
+  finish(
+    options: {
+      preferFrames?: readonly number[];
+      like?: number | null;
+      configuration?: number | "most" | null;
+    } = {},
+  ): Classification {
     const preferred = new Set(options.preferFrames);
     const usable = this.records.filter((record) => record.kind !== null);
     const picked = usable.find((record) => record.frame === options.like);
@@ -146,10 +157,10 @@ export class FrameClassifier {
     const voters = picked
       ? usable.filter((record) => keyOf(record) === keyOf(picked))
       : usable.filter((record) => preferred.has(record.frame));
-    const group = this.given ?? chooseGroup(voters.length > 0 ? voters : usable);
-    if (!group) return nothing(this.records);
-    const graph = graphOf(group);
-    const judge = new FrameJudge(group, graph, this.records);
+    const voted = this.given ?? chooseGroup(voters.length > 0 ? voters : usable);
+    if (!voted) return nothing(this.records);
+    const graph = graphOf(voted);
+    const { group, judge, classes } = this.configured(voted, graph, options.configuration ?? null);
     return {
       frames: this.records.map((record) => judge.judge(record)),
       group,
@@ -159,8 +170,25 @@ export class FrameClassifier {
       ...chirality(graph, group.configuration),
       messages: judge.overall(this.records[0]?.file ?? ""),
       molecules: moleculesOf(usable, keyOf),
+      configurations: judge.choicesOf(classes),
       table: this.tableOf(graph),
     };
+  }
+
+  /** The group in the configuration that is asked for, where frames have it. */
+  private configured(voted: MoleculeGroup, graph: Graph, asked: number | "most" | null) {
+    const judge = new FrameJudge(voted, graph, this.records);
+    const classes = judge.configurationsIn(this.records);
+    const [own, ...others] = classes;
+    const [most] = others;
+    const chosen =
+      asked === "most"
+        ? most && outnumbers(most, own) && most
+        : others.find(({ frames }) => frames.includes(asked ?? 0));
+    if (!chosen) return { group: voted, judge, classes };
+    const group = judge.groupWith(chosen.signs);
+    const again = new FrameJudge(group, graph, this.records);
+    return { group, judge: again, classes: again.configurationsIn(this.records) };
   }
 
   private tableOf(graph: Graph): Required<StatedOrders> | null {
@@ -171,6 +199,11 @@ export class FrameClassifier {
     }
     return null;
   }
+}
+
+/** A pattern with a flat centre says less than a full one, however many have it. */
+function outnumbers(one: ConfigurationClass, own: ConfigurationClass | undefined): boolean {
+  return !one.signs.includes(0) && one.frames.length > (own?.frames.length ?? 0);
 }
 
 function sameElements(elements: Uint8Array, group: MoleculeGroup): boolean {
@@ -214,6 +247,7 @@ function nothing(records: readonly FrameRecord[]): Classification {
     chiralityNote: "",
     messages: [],
     molecules: [],
+    configurations: [],
     table: null,
   };
 }

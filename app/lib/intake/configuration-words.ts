@@ -34,6 +34,42 @@ export function configurationWords(
   return `${text.slice(0, 1).toUpperCase()}${text.slice(1)}.`;
 }
 
+/**
+ * How a unit is arranged, by the rules of Cahn, Ingold and Prelog, where the atoms next to it decide: R or S of a centre, E
+ * or Z of a double bond. Null where ranking would need more than these atoms.
+ *
+ * @param sign of the unit in the numbering of its atoms, never 0
+ * @example arrangementWords(graph, unit, -1) // "C1 is R"
+ */
+export function arrangementWords(graph: Graph, unit: StereoUnit, sign: number): string | null {
+  if (unit.kind === "double-bond") {
+    const { turned, sure } = ranked(graph, unit, sign);
+    return sure ? `${bondName(graph, unit)} is ${turned > 0 ? "Z" : "E"}` : null;
+  }
+  const { neighbours } = unit;
+  const places = neighbours
+    .map((_, k) => k)
+    .sort((a, b) => rankOf(graph, neighbours[b]!) - rankOf(graph, neighbours[a]!));
+  const ranks = new Set(neighbours.map((atom) => rankOf(graph, atom)));
+  if (ranks.size < neighbours.length) return null;
+  // Seen with the lowest (or the lone pair) behind, the others in falling order run clockwise where their triple product
+  // is negative.
+  return `${atomName(graph.elements, unit.atom)} is ${sign * parity(places) < 0 ? "R" : "S"}`;
+}
+
+/** Atomic number first, then mass; an unmarked isotope ranks as the common one. */
+function rankOf({ elements, isotopes }: Graph, atom: number): number {
+  return elements[atom]! * 1000 + isotopes[atom]!;
+}
+
+/** +1 for an even permutation, -1 for an odd one. */
+function parity(places: readonly number[]): number {
+  let sign = 1;
+  for (let i = 0; i < places.length; i++)
+    for (let j = i + 1; j < places.length; j++) if (places[i]! > places[j]!) sign = -sign;
+  return sign;
+}
+
 /** What cannot be told of a frame: flat centres and twisted double bonds. */
 export function undefinedWords(graph: Graph, units: readonly StereoUnit[], open: readonly number[]): string {
   const parts = open.map((u) => {
@@ -46,16 +82,26 @@ export function undefinedWords(graph: Graph, units: readonly StereoUnit[], open:
 
 /** E and Z where the atoms next to the bond decide it (Cahn, Ingold, Prelog, Angew. Chem. Int. Ed. 1966, 5, 385). */
 function doubleBondWords(graph: Graph, unit: DoubleBond, sign: number): string {
-  const ends = unit.sides.map((side) => higher(graph, side)) as [Ranked, Ranked];
-  // The sign speaks of the lowest-numbered neighbours; each end that ranks the other one turns it.
-  const turned = ends.reduce((s, end, k) => (end.atom === unit.sides[k]![0] ? s : -s), sign);
+  const { ends, turned, sure } = ranked(graph, unit, sign);
   const bond = `the double bond ${bondName(graph, unit)}`;
-  if (ends.every((end) => end.sure)) {
+  if (sure) {
     return turned > 0 ? `${bond} is Z, elsewhere E` : `${bond} is E, elsewhere Z`;
   }
   const [a, b] = ends.map((end) => atomName(graph.elements, end.atom));
   const words = turned > 0 ? ["cis", "trans"] : ["trans", "cis"];
   return `at ${bond} ${a} and ${b} are ${words[0]}, elsewhere ${words[1]}`;
+}
+
+/** The higher neighbour at each end, and the sign between these two. */
+function ranked(
+  graph: Graph,
+  unit: DoubleBond,
+  sign: number,
+): { ends: Ranked[]; turned: number; sure: boolean } {
+  const ends = unit.sides.map((side) => higher(graph, side));
+  // The sign speaks of the lowest-numbered neighbours; each end that ranks the other one turns it.
+  const turned = ends.reduce((s, end, k) => (end.atom === unit.sides[k]![0] ? s : -s), sign);
+  return { ends, turned, sure: ends.every((end) => end.sure) };
 }
 
 interface Ranked {

@@ -1,10 +1,16 @@
 import { atomName, symbolOf } from "../chem/elements.ts";
 import type { StereoUnit } from "../chem/refine.ts";
 import { graphSignature, isomorphism } from "../chem/signature.ts";
-import { ConfigurationComparer, fromConfiguration } from "../chem/stereo.ts";
+import { ConfigurationComparer, fromConfiguration, toConfiguration } from "../chem/stereo.ts";
 import { type Graph, makeGraph } from "../structure.ts";
 import { describeChange } from "./bond-changes.ts";
 import { configurationWords } from "./configuration-words.ts";
+import {
+  type ConfigurationChoice,
+  type ConfigurationClass,
+  configurationChoices,
+  configurationClasses,
+} from "./configurations.ts";
 import {
   type BondKind,
   type Hands,
@@ -196,14 +202,53 @@ export class FrameJudge {
   private otherHands(hands: Hands): Finding | null {
     const signs = this.remarks.signsOf(hands);
     if (this.comparer.same(this.signs, signs)) return null;
+    const { units, message } = this.differenceOf(signs);
+    return { code: "X40", reason: "other-configuration", message, hint: this.hintFor(units) };
+  }
+
+  /** Units that tell a configuration from the group's, and the difference in words. */
+  private differenceOf(signs: Int8Array): { units: readonly number[]; message: string } {
     const mirror = this.signs.map((sign, u) => (this.units[u]!.kind === "centre" ? -sign : sign));
     const isMirror = this.comparer.same(mirror, signs);
     // In the mirror image every centre is inverted, and naming fewer would mislead.
     const different = isMirror
       ? this.units.flatMap((unit, u) => (unit.kind === "centre" && signs[u] !== 0 ? [u] : []))
       : this.comparer.difference(this.signs, signs);
-    const message = configurationWords(this.graph, this.units, different, signs, isMirror);
-    return { code: "X40", reason: "other-configuration", message, hint: this.hintFor(different) };
+    return {
+      units: different,
+      message: configurationWords(this.graph, this.units, different, signs, isMirror),
+    };
+  }
+
+  /** The configurations in which the frames hold the group's molecule, its own first. */
+  configurationsIn(records: readonly FrameRecord[]): ConfigurationClass[] {
+    const frames = new Map<Hands, number[]>();
+    for (const record of records) {
+      const { hands } = record;
+      if (hands === null || !this.isGroupBonded(record)) continue;
+      const known = frames.get(hands);
+      if (known) known.push(record.frame);
+      else frames.set(hands, [record.frame]);
+    }
+    const found = [...frames].map(([hands, own]) => ({ signs: this.remarks.signsOf(hands), frames: own }));
+    return configurationClasses(this.comparer, this.signs, found);
+  }
+
+  /** The same as a choice; none where there is but one. */
+  choicesOf(classes: readonly ConfigurationClass[]): ConfigurationChoice[] {
+    return configurationChoices(this.graph, this.units, classes, (signs) => this.differenceOf(signs));
+  }
+
+  /** The group with another configuration of its molecule. */
+  groupWith(signs: Int8Array): MoleculeGroup {
+    return { ...this.group, configuration: toConfiguration(this.units, signs) };
+  }
+
+  /** The frame's bonds, and composition and charge, are the group's. */
+  private isGroupBonded(record: FrameRecord): boolean {
+    const { kind, shape } = record;
+    if (kind === null || !this.sameAtoms.of(shape)) return false;
+    return this.otherCharge(record) === null && this.sameBonds.of(kind);
   }
 
   /** An NH+ or =NH turns over by way of its hydrogen: said beside the way out, which is the same for all. */

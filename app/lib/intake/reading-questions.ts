@@ -1,5 +1,6 @@
 import { formatCount, plural } from "../format.ts";
-import { ASK_CODES, type Ask, HOLD, type OpenReading } from "./reading-choices.ts";
+import type { ConfigurationChoice } from "./configurations.ts";
+import { ASK_CODES, type Ask, type FrameAsk, HOLD, type OpenReading } from "./reading-choices.ts";
 import type { IntakeMessage, IntakeQuestion, QuestionOption } from "./report.ts";
 
 /** Frames whose preview a question shows. */
@@ -30,7 +31,7 @@ const KEEP_HELD: readonly [string, string, string] = [
   "Nothing of them is used.",
 ];
 
-const WORDS: Record<Exclude<Ask, "group">, Words> = {
+const WORDS: Record<FrameAsk, Words> = {
   lengths: {
     text: "Are these coordinates in bohr?",
     reason: (frames) =>
@@ -106,7 +107,7 @@ export function readAskId(id: string): { ask: Ask; batch: number } | null {
  * @example readingQuestion("lengths", 12, first, 0).options.map((option) => option.id) // "bohr", "angstrom", "hold"
  */
 export function readingQuestion(
-  ask: Exclude<Ask, "group">,
+  ask: FrameAsk,
   frames: number,
   first: readonly OpenReading[],
   batch: number,
@@ -134,28 +135,24 @@ function commaReason(frames: number): string {
 }
 
 /** What is said of a frame that waits for an answer. */
-export function waitingMessage(ask: Ask): Pick<IntakeMessage, "code" | "severity" | "message" | "hint"> {
-  const text = ask === "group" ? GROUP_TEXT : WORDS[ask].text;
+export function waitingMessage(ask: FrameAsk): Pick<IntakeMessage, "code" | "severity" | "message" | "hint"> {
   return {
     code: ASK_CODES[ask],
     severity: "question",
-    message: `The frame waits for an answer: ${text}`,
+    message: `The frame waits for an answer: ${WORDS[ask].text}`,
     hint: "It takes no part until that is answered, or somebody releases it.",
   };
 }
 
 /** What is said of a frame that an answer holds. */
-export function heldMessage(ask: Ask): Pick<IntakeMessage, "code" | "severity" | "message" | "hint"> {
-  const text = ask === "group" ? GROUP_TEXT : WORDS[ask].text;
+export function heldMessage(ask: FrameAsk): Pick<IntakeMessage, "code" | "severity" | "message" | "hint"> {
   return {
     code: ASK_CODES[ask],
     severity: "hold",
-    message: `The answer was to keep such frames held: ${text}`,
+    message: `The answer was to keep such frames held: ${WORDS[ask].text}`,
     hint: "Write the file so that it does not leave this open, and take it in again.",
   };
 }
-
-const GROUP_TEXT = "Which molecule is the ensemble?";
 
 const charged = (charge: number | null) =>
   charge === null || charge === 0 ? "" : `, charge ${charge > 0 ? "+" : "−"}${Math.abs(charge)}`;
@@ -165,7 +162,7 @@ export function groupQuestion(molecules: readonly MoleculeChoice[], inSdf: boole
   return {
     id: "group",
     code: inSdf ? "S21" : "X12",
-    text: GROUP_TEXT,
+    text: "Which molecule is the ensemble?",
     reason:
       "The files hold several. The one with most frames was taken; the others are held until you choose.",
     options: molecules.map(({ frame, frames, formula, charge, difference, proposed }) => ({
@@ -176,3 +173,32 @@ export function groupQuestion(molecules: readonly MoleculeChoice[], inSdf: boole
     })),
   };
 }
+
+/** "Which configuration is the ensemble?" (row S23). Whatever is chosen, the others stay held. */
+export function configurationQuestion(configurations: readonly ConfigurationChoice[]): IntakeQuestion {
+  const [taken, ...others] = configurations;
+  const differing = others.map(({ first, frames, words }) => `${firstFrames(first, frames)}: ${words}`);
+  const most = others.every(({ frames }) => frames < (taken?.frames ?? 0));
+  return {
+    id: "configuration",
+    code: ASK_CODES.configuration,
+    text: "Which configuration is the ensemble?",
+    reason: `${differing.join(". ")}; elsewhere ${lowerFirst(taken?.words ?? "")}. The one ${most ? "with most frames" : "that comes first"} was taken; the others are held until you choose. Nothing is averaged across configurations.`,
+    options: configurations.map(({ first, frames, words }, k) => ({
+      id: `frame:${first[0]}`,
+      text: words,
+      detail: `${k === 0 ? "Proposed: taken now. " : ""}${plural(frames, "frame")}, the first is ${formatCount(first[0] ?? 0)}.`,
+      proposed: k === 0,
+    })),
+  };
+}
+
+/** "Frames 4, 9 and 3 more". */
+function firstFrames(first: readonly number[], frames: number): string {
+  const named = first.map(formatCount);
+  const rest = frames - first.length;
+  if (rest > 0) return `Frames ${named.join(", ")} and ${formatCount(rest)} more`;
+  return frames === 1 ? `Frame ${named[0]}` : `Frames ${named.slice(0, -1).join(", ")} and ${named.at(-1)}`;
+}
+
+const lowerFirst = (text: string) => (/^As /.test(text) ? `a${text.slice(1)}` : text);

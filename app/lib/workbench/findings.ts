@@ -202,7 +202,11 @@ export function nearMirror(
 export function moreMayFollow(questions: readonly IntakeQuestion[]): boolean {
   const open = questions.filter(({ answered }) => answered === undefined);
   const unitAsked = questions.some(({ code }) => code === "energy-unit");
-  return open.some(({ id, code }) => readAskId(id) !== null || (code === "energy-from" && !unitAsked));
+  return open.some(({ id, code }) => {
+    const asked = readAskId(id);
+    // The configuration comes last: it opens nothing further.
+    return (asked !== null && asked.ask !== "configuration") || (code === "energy-from" && !unitAsked);
+  });
 }
 
 /**

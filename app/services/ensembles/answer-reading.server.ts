@@ -2,7 +2,7 @@ import { and, eq } from "drizzle-orm";
 import { db, inTransaction } from "../../db/client.server.ts";
 import { batches, ensembles, questions } from "../../db/schema.server.ts";
 import { kindWasStated } from "../../lib/intake/decide-energies.ts";
-import type { ReadingChoices } from "../../lib/intake/reading-choices.ts";
+import { isEnsembleAsk, type ReadingChoices } from "../../lib/intake/reading-choices.ts";
 import { readAskId } from "../../lib/intake/reading-questions.ts";
 import type { IntakeQuestion } from "../../lib/intake/report.ts";
 import type { Grant } from "../auth/access.server.ts";
@@ -49,9 +49,22 @@ async function batchReadings(at: At, given: readonly ReadingAnswer[]): Promise<M
   return readings;
 }
 
-/** The molecule that was taken already is confirmed: nothing needs to be read again. */
+/**
+ * The molecule or the configuration that was taken already is confirmed: nothing needs to be read again now, and what is
+ * read later is read so.
+ */
 async function confirm(at: At, given: readonly ReadingAnswer[]): Promise<void> {
   await inTransaction(async (tx) => {
+    const here = eq(ensembles.id, at.ensembleId);
+    const [row] = await tx.select({ answers: ensembles.answers }).from(ensembles).where(here).for("update");
+    if (row === undefined) throw notFound();
+    const reading = merged(row.answers.reading, given, 0) as Record<string, string>;
+    const answers = { ...row.answers, reading };
+    await tx.update(ensembles).set({ answers }).where(here);
+    await tx
+      .update(batches)
+      .set({ answers })
+      .where(and(eq(batches.ensembleId, at.ensembleId), eq(batches.batch, 0)));
     for (const { question, option } of given) {
       await tx
         .update(questions)
@@ -63,10 +76,7 @@ async function confirm(at: At, given: readonly ReadingAnswer[]): Promise<void> {
       });
     }
     const open = (await findQuestions(at.ensembleId, tx)).filter(({ answered }) => answered === undefined);
-    await tx
-      .update(ensembles)
-      .set({ openQuestions: open.length, changedAt: new Date() })
-      .where(eq(ensembles.id, at.ensembleId));
+    await tx.update(ensembles).set({ openQuestions: open.length, changedAt: new Date() }).where(here);
   });
 }
 
@@ -75,8 +85,9 @@ function entryOf({ question, option }: ReadingAnswer) {
   return { question: question.id, text: question.text, option, optionText };
 }
 
-const confirmsGroup = ({ question, option }: ReadingAnswer) =>
-  question.id === "group" && question.options.some(({ id, proposed }) => id === option && proposed === true);
+const confirmsTaken = ({ question, option }: ReadingAnswer) =>
+  isEnsembleAsk(readAskId(question.id)?.ask) &&
+  question.options.some(({ id, proposed }) => id === option && proposed === true);
 
 /**
  * Answers what was asked of how the files are to be read: they are read again with it, and the frames that waited are
@@ -86,7 +97,7 @@ const confirmsGroup = ({ question, option }: ReadingAnswer) =>
  */
 export async function answerReading(at: At, given: readonly ReadingAnswer[]): Promise<void> {
   if (given.length === 0) return;
-  if (given.every(confirmsGroup)) return confirm(at, given);
+  if (given.every(confirmsTaken)) return confirm(at, given);
   const [row] = await db
     .select()
     .from(ensembles)

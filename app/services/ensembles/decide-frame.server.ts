@@ -1,8 +1,8 @@
-import { and, count, eq, isNull, ne } from "drizzle-orm";
+import { and, count, desc, eq, inArray, isNull, ne, sql } from "drizzle-orm";
 import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
-import { ensembles, frames, intakeMessages, questions } from "../../db/schema.server.ts";
+import { ensembles, frames, intakeMessages, logbook, questions } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
-import { HOLD } from "../../lib/intake/reading-choices.ts";
+import { HOLD, isEnsembleAsk } from "../../lib/intake/reading-choices.ts";
 import { readAskId } from "../../lib/intake/reading-questions.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { FrameState } from "../../lib/intake/report.ts";
@@ -69,16 +69,34 @@ async function write(
 
 const conflict = (title: string, detail: string) => new DomainError("conflict", title, detail);
 
+/** True where the last that people decided about a frame is this release: the call came twice. */
+async function releasedBefore(tx: Transaction, at: At, number: number, reason: string): Promise<boolean> {
+  const [last] = await tx
+    .select({ type: logbook.type, reason: sql<string>`json_value(${logbook.data}, '$.reason')` })
+    .from(logbook)
+    .where(
+      and(
+        eq(logbook.ensembleId, at.ensembleId),
+        inArray(logbook.type, ["hold", "release"]),
+        sql`json_value(${logbook.data}, '$.frame') = ${number}`,
+      ),
+    )
+    .orderBy(desc(logbook.id))
+    .limit(1);
+  return last?.type === "release" && last.reason === reason;
+}
+
 /**
- * Holds a frame: it is kept and left out of every computation from now on.
+ * Holds a frame: it is kept and left out of every computation from now on. The same hold a second time changes nothing.
  *
- * @throws DomainError conflict where it is held already
+ * @throws DomainError conflict where it is held already for another reason
  */
 export async function holdFrame({ actor, ensembleId, frame: number, reason }: Decision): Promise<FrameState> {
   const at = await accessEnsemble(actor, "compute", ensembleId);
   await inTransaction(async (tx) => {
     const { version, frame } = await lock(tx, at, number);
     if (frame.state === "held") {
+      if (frame.holdReason === "by-hand" && frame.note === reason) return;
       throw conflict("Held already", `Frame ${number} is held already: ${frame.note ?? frame.holdReason}`);
     }
     await write(tx, at, number, { state: "held", holdReason: "by-hand", note: reason }, version);
@@ -133,7 +151,10 @@ async function settleWaiting(tx: Transaction, at: At, number: number): Promise<v
     );
   if ((waiting?.n ?? 0) > 0) return;
   const open = (await findQuestions(at.ensembleId, tx)).filter(({ answered }) => answered === undefined);
-  const settled = open.filter(({ id }) => (readAskId(id)?.ask ?? "group") !== "group");
+  const settled = open.filter(({ id }) => {
+    const asked = readAskId(id)?.ask;
+    return asked !== undefined && !isEnsembleAsk(asked);
+  });
   for (const question of settled) {
     const ways = question.options.filter(({ id }) => id !== HOLD);
     const option = (ways.find(({ proposed }) => proposed) ?? ways[0])?.id ?? RELEASED;
@@ -150,6 +171,7 @@ async function settleWaiting(tx: Transaction, at: At, number: number): Promise<v
 
 /**
  * Releases a held frame: it takes part again. Another species or configuration, and what cannot be read, stay held.
+ * The same release a second time changes nothing.
  *
  * @throws DomainError conflict where it is not held, or may not be released; the refusal stands in the logbook
  */
@@ -162,7 +184,10 @@ export async function releaseFrame({
   const at = await accessEnsemble(actor, "compute", ensembleId);
   const outcome = await inTransaction(async (tx) => {
     const { version, frame } = await lock(tx, at, number);
-    if (frame.state !== "held") throw conflict("Not held", `Frame ${number} is not held.`);
+    if (frame.state !== "held") {
+      if (await releasedBefore(tx, at, number, reason)) return { state: frame.state };
+      throw conflict("Not held", `Frame ${number} is not held.`);
+    }
     const why = whyNotReleased(frame.holdReason);
     if (why !== null) return { refused: why };
     // What only its reader held comes back with a remark: somebody decided against it.

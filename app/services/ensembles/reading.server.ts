@@ -17,7 +17,8 @@ import type { FrameVerdict, MoleculeGroup } from "../../lib/intake/frame-record.
 import { MessageList } from "../../lib/intake/message-list.ts";
 import {
   AS_PROPOSED,
-  type Ask,
+  chosenFrame,
+  type FrameAsk,
   HOLD,
   type OpenReading,
   type ReadingChoices,
@@ -25,6 +26,7 @@ import {
   withProposals,
 } from "../../lib/intake/reading-choices.ts";
 import {
+  configurationQuestion,
   groupQuestion,
   heldMessage,
   PREVIEWS,
@@ -170,7 +172,7 @@ export class Reading {
   /** Frames that the answer holds, where it does not hold for all. */
   private readonly refused = new Map<number, OpenReading>();
   /** What is asked, of how many frames, and the first of them. */
-  private readonly asked = new Map<Exclude<Ask, "group">, { frames: number; first: OpenReading[] }>();
+  private readonly asked = new Map<FrameAsk, { frames: number; first: OpenReading[] }>();
   /** Numbers of some frames have decimal commas. */
   decimalCommas = false;
   /** Energies with a decimal comma in frames whose coordinates have points; what their reader made of the frame. */
@@ -451,7 +453,6 @@ export class Reading {
   }
 
   private count(reading: OpenReading): void {
-    if (reading.ask === "group") return;
     const asked = this.asked.get(reading.ask) ?? { frames: 0, first: [] };
     this.asked.set(reading.ask, asked);
     asked.frames += 1;
@@ -489,10 +490,13 @@ export class Reading {
     await this.blocks.end();
     await this.rows.end();
     this.askOfCommas();
-    const like = Number(/^frame:(\d+)$/.exec(this.choices.group ?? "")?.[1] ?? Number.NaN);
-    const classification = this.classifier.finish(Number.isNaN(like) ? {} : { like });
-    const { group, graph, shape } = classification;
     const batch = this.options.after !== undefined;
+    const classification = this.classifier.finish({
+      like: chosenFrame(this.choices.group),
+      // A further batch is compared with what the ensemble is. Frames that were mapped count for the first time.
+      configuration: batch ? null : (chosenFrame(this.choices.configuration) ?? "most"),
+    });
+    const { group, graph, shape } = classification;
     if (group === null || graph === null || (shape === null && !batch)) {
       throw this.nothingUsable(classification);
     }
@@ -561,17 +565,27 @@ export class Reading {
     );
   }
 
-  private questions({ molecules }: Classification): IntakeQuestion[] {
-    const batch = this.options.after?.batch ?? 0;
-    const asked = [...this.asked].map(([ask, { frames, first }]) =>
+  private questions({ molecules, configurations, frames }: Classification): IntakeQuestion[] {
+    const { after } = this.options;
+    const batch = after?.batch ?? 0;
+    const asked: IntakeQuestion[] = [...this.asked].map(([ask, { frames, first }]) =>
       readingQuestion(ask, frames, first, batch),
     );
     const [most, next] = molecules;
     const inSdf = this.files.some(({ format }) => format.startsWith("SDF"));
     // A stray frame of another molecule is held and told; a choice is offered where there is one.
     const several = most !== undefined && next !== undefined && (inSdf || 2 * next.frames >= most.frames);
-    if (this.options.group || !several || this.choices.group !== AS_PROPOSED) return asked;
-    return [...asked, groupQuestion(molecules.slice(0, MOST_CHOICES), inSdf)];
+    if (after) return asked;
+    if (several && this.choices.group === AS_PROPOSED) {
+      asked.push(groupQuestion(molecules.slice(0, MOST_CHOICES), inSdf));
+    }
+    // Row S23 asks, row X40 holds. A frame that was chosen for another molecule is no answer for this one.
+    const chosen = chosenFrame(this.choices.configuration);
+    const answered = frames.some(({ frame, state }) => frame === chosen && state !== "held");
+    if (inSdf && configurations.length > 1 && !answered) {
+      asked.push(configurationQuestion(configurations.slice(0, MOST_CHOICES)));
+    }
+    return asked;
   }
 
   /** The group's sequence of elements becomes shape 0, in blocks and frames alike. */

@@ -10,7 +10,8 @@ import {
   NO_ENERGY,
 } from "../../lib/intake/decide-energies.ts";
 import { MessageList } from "../../lib/intake/message-list.ts";
-import { HOLD } from "../../lib/intake/reading-choices.ts";
+import { HOLD, isEnsembleAsk } from "../../lib/intake/reading-choices.ts";
+import { readAskId } from "../../lib/intake/reading-questions.ts";
 import type { IntakeQuestion } from "../../lib/intake/report.ts";
 import { type SettledEnergies, settleEnergies } from "../../lib/intake/settle-energies.ts";
 import type { Graph } from "../../lib/structure.ts";
@@ -137,7 +138,9 @@ async function writeSettled(
     );
   await insertColumns(tx, id, settled.columns);
   // What the reading itself leaves open is answered by reading again, which releases all.
-  const waits = (await findQuestions(id, tx)).some((one) => one.answered === undefined && one.id !== "group");
+  const waits = (await findQuestions(id, tx)).some(
+    (one) => one.answered === undefined && !isEnsembleAsk(readAskId(one.id)?.ask),
+  );
   const released = waits ? 0 : await releaseAnswered(tx, id);
   await remarkFrames(tx, id, settled.messages);
   const list = new MessageList();

@@ -5,6 +5,8 @@ import { columns, ensembleFiles, ensembles, frames, logbook, series } from "../.
 import { env } from "../../env.server.ts";
 import { uploadFieldsSchema } from "../../lib/api/schemas.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { isEnsembleAsk } from "../../lib/intake/reading-choices.ts";
+import { readAskId } from "../../lib/intake/reading-questions.ts";
 import { canBeSplitOff, splitName, splitWords } from "../../lib/intake/split-name.ts";
 import { splitFrames } from "../../lib/logbook/entries.ts";
 import { FrameCutter, type FramePlace } from "../../lib/text/cut-frames.ts";
@@ -230,15 +232,16 @@ export async function splitOff(options: {
       data: { ensembleId: at.ensembleId, name: parent.name, frames: named, count },
     });
   });
-  await closeMolecules(options.actor, at);
+  await closeChoices(options.actor, at);
   return { ensembleId: taken.ensembleId, name, frames: count, created: true };
 }
 
-/** Where every other molecule became an ensemble of its own, the one that was taken is the answer to which it is. */
-async function closeMolecules(actor: Actor, at: At): Promise<void> {
-  const asked = (await findQuestions(at.ensembleId)).find(({ id }) => id === "group");
-  const proposed = asked?.options.find((option) => option.proposed);
-  if (asked === undefined || asked.answered !== undefined || proposed === undefined) return;
+/** Where every other molecule, or configuration, became an ensemble of its own, the one that was taken is the answer. */
+async function closeChoices(actor: Actor, at: At): Promise<void> {
+  const open = (await findQuestions(at.ensembleId)).filter(
+    ({ id, answered }) => answered === undefined && isEnsembleAsk(readAskId(id)?.ask),
+  );
+  if (open.length === 0) return;
   const entries = await db
     .select({ data: logbook.data })
     .from(logbook)
@@ -248,10 +251,10 @@ async function closeMolecules(actor: Actor, at: At): Promise<void> {
       .flatMap(({ data }) => splitFrames.safeParse(data).data?.frames ?? [])
       .map((frame) => `frame:${frame}`),
   );
-  if (!asked.options.every(({ id }) => id === proposed.id || made.has(id))) return;
-  await answerQuestions({
-    actor,
-    ensembleId: at.ensembleId,
-    answers: [{ id: "group", option: proposed.id }],
+  const answers = open.flatMap(({ id, options }) => {
+    const taken = options.find(({ proposed }) => proposed);
+    const all = options.every((option) => option === taken || made.has(option.id));
+    return taken && all ? [{ id, option: taken.id }] : [];
   });
+  if (answers.length > 0) await answerQuestions({ actor, ensembleId: at.ensembleId, answers });
 }
