@@ -129,7 +129,10 @@ const ensembles = {
       requestParams: { path: framePath },
       requestBody: body(api.decisionRequestSchema),
       responses: {
-        "200": json(api.decisionAnswerSchema, "The frame is used from now on"),
+        "200": json(
+          api.decisionAnswerSchema,
+          "The frame is used from now on; the same call again changes nothing",
+        ),
         "409": problem("Not held, another species or configuration, or broken"),
       },
     }),
@@ -139,8 +142,11 @@ const ensembles = {
       requestParams: { path: framePath },
       requestBody: body(api.decisionRequestSchema),
       responses: {
-        "200": json(api.decisionAnswerSchema, "The frame is held from now on"),
-        "409": problem("It is held already"),
+        "200": json(
+          api.decisionAnswerSchema,
+          "The frame is held from now on; the same call again changes nothing",
+        ),
+        "409": problem("It is held already for another reason"),
       },
     }),
   },
@@ -177,7 +183,10 @@ const columnCalls = {
       requestBody: columnsBody,
       responses: {
         "201": json(api.columnsAnswerSchema, "The columns, with what is to be said of the file"),
-        "200": json(api.columnsPreviewSchema, "With preview=true: what would be kept"),
+        "200": json(
+          z.union([api.columnsAnswerSchema, api.columnsPreviewSchema]),
+          "The same file with the same answers came before: its columns. With preview=true: what would be kept",
+        ),
         "409": problem("A name is taken; replace=true puts the new numbers in its place"),
         "413": problem("More bytes or values than the limit"),
         "415": problem("No multipart/form-data"),

@@ -1,5 +1,5 @@
 import { and, eq } from "drizzle-orm";
-import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
+import { db, inTransaction, type Queryable, type Transaction } from "../../db/client.server.ts";
 import { isDuplicate } from "../../db/driver-errors.server.ts";
 import { columns } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
@@ -22,6 +22,7 @@ import { planStructureFile } from "./plan-structures.server.ts";
 import { planTableFile } from "./plan-table.server.ts";
 import { type ReceivedFile, receiveFile } from "./receive-file.server.ts";
 import { recomputeDerived } from "./recompute-derived.server.ts";
+import { standingColumns } from "./standing-columns.server.ts";
 import { lockEnsemble, storeColumn, touchEnsemble } from "./store-column.server.ts";
 import { loadTarget, type TargetEnsemble } from "./target.server.ts";
 
@@ -38,7 +39,13 @@ export interface ListedColumn {
 }
 
 export type AddedColumns =
-  | { kind: "stored"; columns: ListedColumn[]; messages: IntakeMessage[] }
+  | {
+      kind: "stored";
+      columns: ListedColumn[];
+      messages: IntakeMessage[];
+      /** False where the same file with the same answers had made them before. */
+      made: boolean;
+    }
   | { kind: "preview"; preview: ColumnsPreview };
 
 /** What the file would become, by what it is. */
@@ -73,8 +80,8 @@ function openPoints(name: string, questions: readonly IntakeQuestion[]): DomainE
   });
 }
 
-async function namesOf(ensembleId: string): Promise<Set<string>> {
-  const rows = await db
+async function namesOf(ensembleId: string, on: Queryable = db): Promise<Set<string>> {
+  const rows = await on
     .select({ name: columns.name })
     .from(columns)
     .where(eq(columns.ensembleId, ensembleId));
@@ -104,9 +111,14 @@ async function previewOf(name: string, plan: FilePlan, target: TargetEnsemble): 
 }
 
 /** Refused names, before anything is written: all of them at once. */
-async function refuseTaken(ensembleId: string, plan: FilePlan, fields: ColumnFields): Promise<void> {
+async function refuseTaken(
+  tx: Transaction,
+  ensembleId: string,
+  plan: FilePlan,
+  fields: ColumnFields,
+): Promise<void> {
   if (fields.replace === true) return;
-  const names = await namesOf(ensembleId);
+  const names = await namesOf(ensembleId, tx);
   const taken = plan.columns.filter(({ name }) => names.has(name));
   if (taken.length === 0) return;
   const faults = taken.map(({ name }): Fault => {
@@ -127,6 +139,9 @@ async function storeAll(tx: Transaction, at: At, file: ReceivedFile, plan: FileP
       "Frames were added while the file was read. Nothing was stored; send it again.",
     );
   }
+  const standing = await standingColumns(tx, at.ensembleId, file.sha256, plan.columns);
+  if (standing !== null) return { ids: standing, made: false };
+  await refuseTaken(tx, at.ensembleId, plan, file.fields);
   const [sourceId] = await file.store.publish(tx);
   const stored: { id: string; name: string; replaced: boolean }[] = [];
   for (const { column: _, header: __, why: ___, ...column } of plan.columns) {
@@ -156,7 +171,7 @@ async function storeAll(tx: Transaction, at: At, file: ReceivedFile, plan: FileP
       answers: statedAnswers(file.fields),
     },
   });
-  return stored.map(({ id }) => id);
+  return { ids: stored.map(({ id }) => id), made: true };
 }
 
 /** The columns as they stand now, in the order of the ids. */
@@ -173,7 +188,7 @@ export async function listColumns(ensembleId: string, ids: readonly string[]): P
 /**
  * Adds columns to an ensemble from a table or a second structure file: the file is kept, read with what was stated beside
  * it, matched with the frames, and either all of its columns are there or none. What is open is a question in a preview
- * and a refusal otherwise.
+ * and a refusal otherwise. Sent again with the same answers it changes nothing and gives the same columns.
  *
  * @throws DomainError invalid (422) for what is open or cannot be read, conflict (409) for names that are taken
  */
@@ -199,17 +214,16 @@ export async function addColumns(options: {
     }
     if (plan.questions.length > 0) throw openPoints(file.name, plan.questions);
     if (plan.columns.length === 0) throw openPoints(file.name, [NOTHING_CHOSEN]);
-    await refuseTaken(at.ensembleId, plan, file.fields);
-    const ids = await inTransaction((tx) => storeAll(tx, at, file, plan, target.strip.length)).catch(
-      (error: unknown) => {
-        if (!isDuplicate(error)) throw error;
-        const message =
-          "Somebody added a column of the same name at this moment. Nothing was stored; send it again.";
-        throw new DomainError("conflict", "The name is taken", message);
-      },
-    );
-    await siftAfterLevels(at, ids);
-    return { kind: "stored", columns: await listColumns(at.ensembleId, ids), messages: plan.messages };
+    const { ids, made } = await inTransaction((tx) =>
+      storeAll(tx, at, file, plan, target.strip.length),
+    ).catch((error: unknown) => {
+      if (!isDuplicate(error)) throw error;
+      const message =
+        "Somebody added a column of the same name at this moment. Nothing was stored; send it again.";
+      throw new DomainError("conflict", "The name is taken", message);
+    });
+    if (made) await siftAfterLevels(at, ids);
+    return { kind: "stored", columns: await listColumns(at.ensembleId, ids), messages: plan.messages, made };
   } finally {
     // What was published answers for its checksum and stays.
     await file.store.discard().catch((error) => log.warn({ err: error }, "file not taken back"));

@@ -82,7 +82,7 @@ function checkKind(name: string, before: "energy" | "property", now: "energy" | 
 }
 
 /** The row of a column without what makes it this one: id, ensemble, place. */
-function rowOf(column: ColumnToStore) {
+export function rowOf(column: ColumnToStore) {
   const packed = Buffer.from(packColumn(column.data));
   const energy = column.kind === "energy";
   return {
