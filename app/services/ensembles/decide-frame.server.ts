@@ -2,7 +2,7 @@ import { and, count, desc, eq, inArray, isNull, ne, sql } from "drizzle-orm";
 import { db, inTransaction, type Transaction } from "../../db/client.server.ts";
 import { ensembles, frames, intakeMessages, logbook, questions } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
-import { HOLD } from "../../lib/intake/reading-choices.ts";
+import { HOLD, isEnsembleAsk } from "../../lib/intake/reading-choices.ts";
 import { readAskId } from "../../lib/intake/reading-questions.ts";
 import { whyNotReleased } from "../../lib/intake/release.ts";
 import type { FrameState } from "../../lib/intake/report.ts";
@@ -151,7 +151,10 @@ async function settleWaiting(tx: Transaction, at: At, number: number): Promise<v
     );
   if ((waiting?.n ?? 0) > 0) return;
   const open = (await findQuestions(at.ensembleId, tx)).filter(({ answered }) => answered === undefined);
-  const settled = open.filter(({ id }) => (readAskId(id)?.ask ?? "group") !== "group");
+  const settled = open.filter(({ id }) => {
+    const asked = readAskId(id)?.ask;
+    return asked !== undefined && !isEnsembleAsk(asked);
+  });
   for (const question of settled) {
     const ways = question.options.filter(({ id }) => id !== HOLD);
     const option = (ways.find(({ proposed }) => proposed) ?? ways[0])?.id ?? RELEASED;
