@@ -164,11 +164,10 @@ export function readEnergyColumn(
 }
 
 /** The error for a rule that fits no frame (422 in the API): with the first text that stands where its number should. */
-export function absentEnergy({
-  from,
-  rows,
-  problems,
-}: Pick<EnergyColumn, "from" | "rows" | "problems">): DomainError {
+export function absentEnergy(
+  column: Omit<EnergyColumn, "values" | "present" | "count" | "decimals">,
+): DomainError {
+  const { from, rows, problems } = column;
   const rule = parseFrom(from);
   const what =
     rule.kind === "number"
