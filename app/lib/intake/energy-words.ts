@@ -29,9 +29,9 @@ const COUNTERS = set(
     "number rank cluster atom atoms run job snapshot image name label title comment source file",
 );
 /** Units behind numbers that are no energies. */
-const OTHER_UNITS = set(
-  "fs ps ns s sec min a å angstrom angstroms bohr deg degrees ° d debye % amu u bar atm k",
-);
+const OTHER_UNITS = set("fs ps ns sec min å angstrom angstroms bohr deg degrees ° debye % amu bar atm");
+/** Those of one letter: a label as well, so they count as written, and behind what such a quantity can be. */
+const LETTER_UNITS = set("A s D u K");
 
 /** Parts of a name: `MMFF94_ENERGY_KCAL_MOL`, `E(RHF)`, `totalEnergy`. */
 const nameWords = remember((name): readonly string[] => {
@@ -72,10 +72,18 @@ export function classify(number: CommentNumber): NumberClass {
   const { key } = number;
   const named = key === null || isUnitKey(key) ? classOfWords(number.words) : classOfName(key);
   if (named !== null) return named;
-  if (OTHER_UNITS.has(number.next.toLowerCase()) && parseEnergyUnit(number.next) !== "hartree")
-    return "other";
+  if (hasOtherUnit(number)) return "other";
   if (number.unit !== null && number.unit !== "K" && number.unit !== "cm-1") return "unit";
   return /[.eEdD]/.test(number.text) ? "loose" : "whole";
+}
+
+/**
+ * `1.54 A` is a length and `1.85 D` a dipole, but `-76.026 A` is neither, and the `a` of `-76.026 a` a word: lengths,
+ * times, dipoles, masses and temperatures are never negative.
+ */
+function hasOtherUnit({ next, value }: CommentNumber): boolean {
+  if (next.length === 1 && LETTER_UNITS.has(next)) return value === null || value >= 0;
+  return OTHER_UNITS.has(next.toLowerCase());
 }
 
 /** The nearest word that says anything decides; three are looked at. */
