@@ -13,6 +13,7 @@ import { lockEnsemble, storeColumn } from "~/services/columns/store-column.serve
 import { askToVerify } from "~/services/editions/ask-to-verify.server";
 import { lastVerification } from "~/services/editions/find-edition.server";
 import { loadHandOver } from "~/services/editions/load-hand-over.server";
+import { loadEdition } from "~/services/editions/load-edition.server";
 import { openEditionFile } from "~/services/editions/open-edition-file.server";
 import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
 import { unpackMolecule } from "~/services/ensembles/molecule.server";
@@ -288,8 +289,8 @@ describe("what an ensemble holds beside populations", () => {
   it("goes into the edition as sections: averages by their rules, the comparison of levels, the search", async () => {
     const frames = Array.from({ length: 60 }, (_, k) => k + 1);
     const table = [
-      "frame,dipole [D],better [kcal/mol]",
-      ...frames.map((frame) => `${frame},${(frame % 7) / 2},${frame / 10}`),
+      "frame,dipole [D],better [kcal/mol],rank",
+      ...frames.map((frame) => `${frame},${(frame % 7) / 2},${frame / 10},${frame}`),
     ].join("\n");
     const form = new FormData();
     form.append("file", new Blob([table]), "table.csv");
@@ -301,7 +302,10 @@ describe("what an ensemble holds beside populations", () => {
     expect(sent.status, await sent.clone().text()).toBe(201);
     const made = await freeze(actor(), at);
     const content = JSON.parse((await rowOf(made.id)).content);
-    expect(content.averages).toMatchObject([{ property: "dipole", unit: "D", rule: "linear" }]);
+    expect(content.averages).toMatchObject([
+      { property: "dipole", unit: "D", rule: "linear" },
+      { property: "rank", unit: null, rule: "linear" },
+    ]);
     const { error, average } = content.averages[0];
     expect(error.low).toBeLessThan(average);
     expect(error.high).toBeGreaterThan(average);
@@ -310,7 +314,11 @@ describe("what an ensemble holds beside populations", () => {
     expect(content.comparisons).toMatchObject([{ reference: "better" }]);
     expect(content.comparisons[0].n).toBeGreaterThan(3);
     expect(content.sampling.coverage).toBeGreaterThan(0);
-    expect(content.words.methods).toContain("1 property was averaged");
+    expect(content.words.methods).toContain("2 properties were averaged");
+    // What only counts frames up is a property like others, here and in every other place that lists averages.
+    const edition = await loadEdition({ actor: actor(), ensembleId: at.ensembleId, number: made.number });
+    expect(edition.averages?.map(({ property }) => property)).toEqual(["dipole", "rank"]);
+    expect(edition.counting).toEqual(["rank"]);
     expect(content.words.methods).toContain("MMFF94 was compared with better");
     const csv = (await bytesOf(made.id, "averages.csv")).toString("utf8");
     const own = await call(`/api/v1/sifts/${at.siftId}/averages.csv?sigma=0.5`, { token: lab.token });

@@ -124,7 +124,9 @@ export function PropertyTable({
             <Tr key={name} className="text-ink-3">
               <Td wrap colSpan={averaged.temperatures.length + 5}>
                 <span className="[overflow-wrap:anywhere]">{name}</span>
-                <span className="block text-xs">a counter, not averaged</span>
+                <span className="block text-xs">
+                  counts the frames up: averaged in the files and in editions, not here
+                </span>
               </Td>
             </Tr>
           ))}

@@ -54,6 +54,9 @@ export function AveragesTable({ edition }: { edition: EditionView }) {
               <Tr key={k} className="figures">
                 <Td wrap className="[overflow-wrap:anywhere]">
                   {row.property}
+                  {edition.counting.includes(row.property) ? (
+                    <span className="block text-xs text-ink-3">counts the frames up: may be a label</span>
+                  ) : null}
                   <span className="block text-xs text-ink-3 sm:hidden">
                     <RuleName rule={row.rule} />
                     {row.unit ? `, in ${row.unit}` : ""}

@@ -11,7 +11,6 @@ import type { SearchView } from "../trust/trust-view.ts";
 import { CONSTANTS_YEAR } from "../units.ts";
 import { joinWords } from "../workbench/findings.ts";
 import type { EditionContent, EditionPopulations, OpenItem } from "./content.ts";
-import { averagedProperties } from "./counters.ts";
 import { shapeExtent } from "./extent.ts";
 import { editionFindings } from "./findings.ts";
 import { measuredSection, measuredSentences } from "./measured.ts";
@@ -250,8 +249,7 @@ function furtherSentences(
     | "measured"
   >,
 ) {
-  const { comparisons, level, uncertainty } = facts;
-  const averages = averagedProperties(facts);
+  const { averages, comparisons, level, uncertainty } = facts;
   const rules = [...new Set((averages ?? []).map(({ rule }) => RULE_WORDS[rule].name))];
   return [
     averages === null || averages.length === 0

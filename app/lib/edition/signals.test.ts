@@ -1,5 +1,5 @@
 import { expect, it } from "vitest";
-import { signalRows } from "./signals.ts";
+import { countingProperties, signalRows } from "./signals.ts";
 
 const figures = (average: number) => ({
   unit: "ppm",
@@ -35,4 +35,21 @@ it("lists equivalent atoms in one row, and never what is no per-atom quantity", 
     ["other", 4],
   ]);
   expect(signalRows({ ...content, averages: null })).toBeNull();
+});
+
+it("lists a column that counts the frames up like any other, and names it", () => {
+  const kept = [{ frame: 1 }, { frame: 2 }, { frame: 3 }];
+  const rank = { ...column("rank", null), unit: null, values: [1, 2, 3] };
+  const steps = { ...column("steps", null), unit: null, values: [1, 2, 4] };
+  const counted = {
+    ...content,
+    kept,
+    columns: [rank, steps],
+    averages: [
+      { property: "rank", ...figures(1.4), unit: null },
+      { property: "steps", ...figures(1.6), unit: null },
+    ],
+  } as unknown as Parameters<typeof signalRows>[0];
+  expect(signalRows(counted)?.map(({ row }) => row.property)).toEqual(["rank", "steps"]);
+  expect(countingProperties(counted)).toEqual(["rank"]);
 });

@@ -1,5 +1,5 @@
+import { countsUp } from "../averages/counter.ts";
 import type { EditionContent } from "./content.ts";
-import { averagedProperties } from "./counters.ts";
 import { atomNames } from "./measured.ts";
 
 type AverageRow = NonNullable<EditionContent["averages"]>[number];
@@ -14,13 +14,11 @@ type AverageRow = NonNullable<EditionContent["averages"]>[number];
 export function signalRows(
   content: Pick<EditionContent, "averages" | "columns" | "kept" | "ensemble">,
 ): { row: AverageRow; place: number }[] | null {
-  const shown = averagedProperties(content);
-  if (shown === null) return null;
+  if (content.averages === null) return null;
   const columns = new Map(content.columns.map((column) => [column.name, column]));
   const entries: { row: AverageRow; place: number; quantity: string | null; atoms: number[] }[] = [];
   const known = new Map<string, number[]>();
-  for (const row of shown) {
-    const place = content.averages?.indexOf(row) ?? -1;
+  for (const [place, row] of content.averages.entries()) {
     const { quantity = null, atom = null } = columns.get(row.property) ?? {};
     const { property: _property, ...figures } = row;
     const key = JSON.stringify([quantity, figures]);
@@ -41,4 +39,18 @@ export function signalRows(
           place,
         },
   );
+}
+
+/**
+ * Names of the averaged columns that only count the frames up, so that a page can say that they may be labels. They are
+ * averaged like any other property in every file, table, sentence and comparison: what merely looks like a counter may be
+ * a property.
+ *
+ * @example countingProperties(content) // ["frame_id"]
+ */
+export function countingProperties({ columns, kept }: Pick<EditionContent, "columns" | "kept">): string[] {
+  const frames = kept.map(({ frame }) => frame);
+  return columns
+    .filter(({ kind, unit, values }) => kind === "property" && unit === null && countsUp(frames, values))
+    .map(({ name }) => name);
 }

@@ -111,6 +111,8 @@ export interface EditionView {
   caution: string;
   findings: EditionFinding[];
   averages: EditionContent["averages"];
+  /** Properties among them whose values only count the frames up. */
+  counting: string[];
   uncertainty: EditionContent["uncertainty"];
   /** In the order of `averages` and `rows`. */
   temperatures: EditionContent["temperatures"];

@@ -2,7 +2,7 @@ import { citationBibtex, citationCff, citationText } from "../../lib/edition/cit
 import type { EditionContent } from "../../lib/edition/content.ts";
 import { editionRows } from "../../lib/edition/rows.ts";
 import { shownRows } from "../../lib/edition/shown.ts";
-import { signalRows } from "../../lib/edition/signals.ts";
+import { countingProperties, signalRows } from "../../lib/edition/signals.ts";
 import type { EditionShape, EditionView, VerifiedView } from "../../lib/edition/views.ts";
 import { escapeControls } from "../../lib/text/escape.ts";
 import { type FoundEdition, findPositions, type LastVerification } from "./find-edition.server.ts";
@@ -98,6 +98,7 @@ export async function toEditionView(
     caution: content.caution,
     findings: content.findings,
     averages: signalRows(content)?.map(({ row }) => row) ?? null,
+    counting: countingProperties(content),
     uncertainty: content.uncertainty && {
       ...content.uncertainty,
       populations: content.uncertainty.populations.slice(0, MOST_ROWS),
