@@ -11,7 +11,7 @@ export function Checkbox({
     <label
       className={`flex items-start gap-3 pointer-coarse:min-h-11 pointer-coarse:items-center ${className}`}
     >
-      <span className="relative grid translate-y-0.5 size-4 shrink-0 place-items-center">
+      <span className="relative grid translate-y-[calc(0.5lh-0.5rem)] size-4 shrink-0 place-items-center">
         <input
           type="checkbox"
           className="peer col-start-1 row-start-1 size-4 appearance-none rounded-sm border border-edge bg-sheet checked:border-action checked:bg-action"

@@ -103,7 +103,13 @@ export function SliderField({
         <span className="relative h-6 min-w-24 flex-1">
           <svg aria-hidden="true" className="pointer-events-none absolute inset-0 size-full overflow-visible">
             <rect x="0" y="11" width="100%" height="2" className="fill-rule-2" />
-            <rect x="0" y="10" width={`${share}%`} height="4" className="fill-mark" />
+            <rect
+              x="0"
+              y="10"
+              width={`${share}%`}
+              height="4"
+              className={disabled ? "fill-ink-off" : "fill-mark"}
+            />
           </svg>
           <input
             id={id}

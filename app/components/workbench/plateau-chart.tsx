@@ -198,8 +198,21 @@ function Lines({
           ),
         )}
       </g>
+      {here ? (
+        // Below all labels, whose halo keeps them readable over it.
+        <path
+          d={`M${plot.x(here.tolerance)} ${plot.top}V${plot.bottom}`}
+          stroke="var(--color-mark)"
+          strokeWidth={1.2}
+          strokeDasharray="5 4"
+        />
+      ) : null}
       {off ? (
-        <ChartText x={plot.x(off.tolerance) + 6} y={plot.top + 10} halo>
+        <ChartText
+          x={besideLine(plot.x(off.tolerance) + 6, here ? plot.x(here.tolerance) : null)}
+          y={plot.top + 10}
+          halo
+        >
           {`${formatCount(off.count)} at ${withUnit(toleranceText(off.tolerance), "Å")}`}
         </ChartText>
       ) : null}
@@ -226,12 +239,6 @@ function Lines({
       ) : null}
       {here ? (
         <>
-          <path
-            d={`M${plot.x(here.tolerance)} ${plot.top}V${plot.bottom}`}
-            stroke="var(--color-mark)"
-            strokeWidth={1.2}
-            strokeDasharray="5 4"
-          />
           <circle cx={plot.x(here.tolerance)} cy={y(here.count)} r={4.5} fill="var(--color-mark)" />
           <ChartText
             x={plot.x(here.tolerance) + (here.tolerance > 0.7 * widest ? -9 : 9)}
@@ -247,6 +254,13 @@ function Lines({
     </g>
   );
 }
+
+/** Pixels that "10,000 at 0.02 Å" takes. */
+const OFF_LABEL_PX = 104;
+
+/** Where a label begins that would lie across the line at hand: beside the line. */
+const besideLine = (x: number, line: number | null) =>
+  line !== null && line > x - 4 && line < x + OFF_LABEL_PX ? line + 9 : x;
 
 /** Pixels that "0.075 kcal/mol: 25" takes. */
 const END_LABEL_PX = 118;
