@@ -120,6 +120,27 @@ describe("a live link", () => {
     }
   });
 
+  it("tells a guest nothing of other editions, in the logbook's part either (D04)", async () => {
+    const warm = await freeze(actor(), at, { title: "At body temperature", temperature: 310 });
+    const plain = await freeze(actor(), at, { title: "At room temperature" });
+    const pageOf = async (n: number) => {
+      const made = await link(actor(), { ensembleId: at.ensembleId, number: n }, { logbook: true });
+      return (await call(`/e/${made.secret}`)).text();
+    };
+    for (const [own, other] of [
+      [warm, plain],
+      [plain, warm],
+    ] as const) {
+      const [title, otherTitle] = own === warm ? ["body", "room"] : ["room", "body"];
+      const page = await pageOf(own.number);
+      expect(page).toContain(`Froze edition ${own.number}, “At ${title} temperature”`);
+      expect(page).not.toMatch(new RegExp(`Froze edition (?!${own.number},)`));
+      expect(page).not.toContain(`At ${otherTitle} temperature`);
+      expect(page).not.toContain(other.contentSha256.slice(0, 8));
+      expect(page).not.toContain("For the partner");
+    }
+  });
+
   it("holds no addresses, user names or ids (C07)", async () => {
     const { secret } = await makeLiveLink({ logbook: true });
     const page = await (await call(`/e/${secret}`)).text();

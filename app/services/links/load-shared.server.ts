@@ -1,4 +1,4 @@
-import { and, asc, eq, inArray, lte } from "drizzle-orm";
+import { and, asc, eq, inArray, lte, or, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { editions, ensembleFiles, logbook, sources } from "../../db/schema.server.ts";
 import type { EditionView } from "../../lib/edition/views.ts";
@@ -26,7 +26,7 @@ export type SharedPage =
   | { live: true; edition: EditionView; endsAt: string; entries: SharedEntry[] | null }
   | { live: false; endedAt: string; contact: string };
 
-/** Decisions on the ensemble; people, tokens, links and exports are nobody else's business. */
+/** Decisions on the ensemble; people, tokens, links, exports and other editions are no business of a guest's. */
 const SHARED_KINDS: readonly LogbookType[] = [
   "intake",
   "reread",
@@ -37,11 +37,19 @@ const SHARED_KINDS: readonly LogbookType[] = [
   "sift",
   "columns-added",
   "column-changed",
-  "edition-frozen",
 ];
 const MOST_ENTRIES = 300;
 
-async function sharedEntries(grant: LinkGrant, until: Date): Promise<SharedEntry[]> {
+/** What was decided up to the edition, and that it was frozen. */
+async function sharedEntries(
+  grant: LinkGrant,
+  edition: { number: number; createdAt: Date },
+): Promise<SharedEntry[]> {
+  const decided = and(inArray(logbook.type, [...SHARED_KINDS]), lte(logbook.createdAt, edition.createdAt));
+  const frozen = and(
+    eq(logbook.type, "edition-frozen"),
+    sql`json_value(${logbook.data}, '$.number') = ${edition.number}`,
+  );
   const rows = await db
     .select({
       at: logbook.createdAt,
@@ -52,12 +60,7 @@ async function sharedEntries(grant: LinkGrant, until: Date): Promise<SharedEntry
     })
     .from(logbook)
     .where(
-      and(
-        eq(logbook.teamId, grant.teamId),
-        eq(logbook.ensembleId, grant.ensembleId),
-        inArray(logbook.type, [...SHARED_KINDS]),
-        lte(logbook.createdAt, until),
-      ),
+      and(eq(logbook.teamId, grant.teamId), eq(logbook.ensembleId, grant.ensembleId), or(decided, frozen)),
     )
     .orderBy(asc(logbook.id))
     .limit(MOST_ENTRIES);
@@ -89,7 +92,7 @@ export async function loadShared(options: {
     lastVerification(edition.id).then((verified) =>
       toEditionView(edition, { sources: grant.sources, verified }),
     ),
-    grant.logbook ? sharedEntries(grant, edition.createdAt) : null,
+    grant.logbook ? sharedEntries(grant, edition) : null,
   ]);
   if (options.count) await noteOpening(grant);
   return { live: true, edition: view, endsAt: grant.endsAt.toISOString(), entries };
