@@ -153,6 +153,24 @@ describe("averages.csv", () => {
     expect(Number(rows.get("too few")!.covered)).toBeLessThan(0.9);
   });
 
+  it("turns angles by their unit, and gives no uncertainty without an error", async () => {
+    const kept = sift.result!.kept.map(({ frame }) => frame);
+    const radians = Array.from({ length: frames.count }, (_, k) =>
+      kept.indexOf(k + 1) % 2 === 0 ? 3.1 : -3.1,
+    );
+    await store("phi in radians", "rad", radians, { rule: "circular" });
+    const degrees = radians.map((value) => (value * 180) / Math.PI);
+    await store("phi in degrees", "°", degrees, { rule: "circular" });
+    const rows = await csv("?sigma=0");
+    const [rad, deg] = [rows.get("phi in radians")!, rows.get("phi in degrees")!];
+    expect(rad).toMatchObject({ unit: "rad", rule: "circular", uncertainty: "0" });
+    expect(deg.uncertainty).toBe("0");
+    expect(Math.abs(Number(rad.average))).toBeGreaterThan(3.09);
+    expect(Number(rad.spread)).toBeLessThan(0.05);
+    expect((Number(rad.average) * 180) / Math.PI).toBeCloseTo(Number(deg.average), 9);
+    expect((Number(rad.spread) * 180) / Math.PI).toBeCloseTo(Number(deg.spread), 9);
+  });
+
   it("merges per-atom columns over equivalent atoms, one row a column", async () => {
     const methyl = [...set.graph.elements.keys()].find((atom) => {
       const at = set.graph.neighbours.subarray(set.graph.offsets[atom]!, set.graph.offsets[atom + 1]!);

@@ -129,6 +129,51 @@ describe("a table", () => {
     expect(forced.body.columns[0]).toMatchObject({ name: "gap", kind: "property", unit: "eV" });
   });
 
+  it("says what of the request could not be used", async () => {
+    const messages = async (content: string, fields: Record<string, string>) => {
+      const { id } = await ensemble(3);
+      const { status, body } = await add(id, table(content), fields);
+      expect(status).toBe(201);
+      return body.messages.map((one: { message: string }) => one.message).join("\n");
+    };
+    const energies = "frame,b [kcal/mol]\n1,0\n2,0.1\n3,0.32\n";
+    expect(await messages(energies, { energyUnit: "hartree" })).toContain(
+      'energyUnit=hartree was not used for "b": its header says kcal/mol, and kcal/mol was taken.',
+    );
+    expect(await messages("frame,a,b\n1,0,1\n2,2,3\n3,1,1\n", { energyUnit: "hartree" })).toContain(
+      'energyUnit=hartree was not used: "a", "b" have no unit, and nobody can tell which of them are energies.',
+    );
+    expect(await messages(energies, { energyKind: "electronic", energyTemperature: "298.15" })).toContain(
+      "belong to no temperature",
+    );
+    expect(await messages(energies, { energyKind: "free" })).toContain("their temperature is not stated");
+    expect(await messages("frame,phi\n1,3.1\n2,-3.1\n3,3\n", { rule: "circular" })).toContain(
+      "it is averaged as an angle in degrees. No value goes beyond 6.29: are they radians?",
+    );
+    const long = await messages(`frame,${"x".repeat(130)}\u202e [ppm]\n1,1\n2,2\n3,4\n`, {});
+    expect(long).toContain("A name has 131 characters");
+    expect(await messages("frame,ab\u202e [ppm]\n1,1\n2,2\n3,4\n", {})).toContain("ab\\u202e");
+  });
+
+  it("says what helps where a unit is none of an energy's, and what a field may be", async () => {
+    const { id } = await ensemble(3);
+    const shift = table("frame,a [ppm]\n1,1\n2,2\n3,3\n");
+    const refused = await add(id, shift, { kind: "energy", energyUnit: "kcal/mol" });
+    expect(refused.status).toBe(422);
+    expect(refused.body.detail).toContain("a unit that stands with the numbers counts before energyUnit");
+    expect(refused.body.detail).not.toContain("State energyUnit");
+    const helped = await add(id, shift, { kind: "energy", columns: '[{"column":2,"unit":"kcal/mol"}]' });
+    expect([helped.status, helped.body.columns[0].unit]).toEqual([201, "kcal/mol"]);
+    for (const fields of [{ rule: "mean" }, { energyKind: "gibbs" }, { replace: "yes" }] as const) {
+      const [field, value] = Object.entries(fields)[0] ?? ["", ""];
+      const { status, body } = await add(id, shift, fields as Record<string, string>);
+      expect([status, body.errors[0].field]).toEqual([422, field]);
+      expect(body.errors[0].message).toMatch(new RegExp(`^Expected "[^;]*; found "${value}"`));
+    }
+    const angle = await add(id, table("frame,d [Å]\n1,1\n2,2\n3,3\n"), { rule: "circular" });
+    expect(angle.body.detail).toContain("circular averages an angle in °, rad or mrad");
+  });
+
   it("refuses what it leaves open, naming the field that answers it, and stores nothing", async () => {
     const { id } = await ensemble(3);
     const before = await storedRows();

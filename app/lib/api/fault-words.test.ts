@@ -28,12 +28,12 @@ describe("what a request lacks is said in plain words, with what would be right"
     [
       populationsQuerySchema,
       { temperature: "warm" },
-      'temperature: A temperature is a number of K above zero, such as 298.15. Found "warm".',
+      'temperature: A temperature is a number of K above zero and up to 100,000, such as 298.15. Found "warm".',
     ],
     [
       populationsQuerySchema,
       { temperature: "0" },
-      'temperature: A temperature is a number of K above zero, such as 298.15. Found "0".',
+      'temperature: A temperature is a number of K above zero and up to 100,000, such as 298.15. Found "0".',
     ],
     [
       siftQuerySchema,
@@ -91,7 +91,7 @@ describe("what a request lacks is said in plain words, with what would be right"
     [
       rereadRequestSchema,
       { energyTemperature: true },
-      "energyTemperature: Expected a number or a text; found true. A temperature is a number of K above zero, such as 298.15.",
+      "energyTemperature: Expected a number or a text; found true. A temperature is a number of K above zero and up to 100,000, such as 298.15.",
     ],
   ] as const)("%# %j", (schema, data, words) => {
     expect(told(schema, data)).toEqual([words]);

@@ -20,7 +20,7 @@ function numberText(lowest: number, highest: number, words: string) {
     .transform(Number);
 }
 
-const TEMPERATURE_WORDS = "A temperature is a number of K above zero, such as 298.15.";
+const TEMPERATURE_WORDS = "A temperature is a number of K above zero and up to 100,000, such as 298.15.";
 
 /** An option of an address: left out or left empty both mean the default. */
 function optional<Schema extends z.ZodType>(schema: Schema) {

@@ -3,7 +3,7 @@ import { symbolOf } from "../chem/elements.ts";
 import type { ColumnData } from "../column-data.ts";
 import { IntakeRejection } from "../intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
-import { quoteFound } from "../text/escape.ts";
+import { hasSteeringCharacters, quoteFound } from "../text/escape.ts";
 import { type EnergyUnit, kcalPer } from "../units.ts";
 import type { EnergyKind } from "../views.ts";
 import { columnUnit, type KnownUnit, saysEnergy } from "./column-unit.ts";
@@ -80,6 +80,33 @@ export interface DraftColumn extends Omit<PlannedColumn, "data" | "count" | "dec
 }
 
 const MAX_NAME = 120;
+
+/** What became of a name that is too long, or that steers a screen: it is kept and shown written out (row G13). */
+function nameRemarks({ name }: DraftColumn, written: string, context: PlanContext): IntakeMessage[] {
+  const remark = (code: string, message: string): IntakeMessage => ({
+    ...{ code, severity: "remark", file: context.file, line: context.headerLine, message },
+    found: quoteFound(written),
+  });
+  const length = [...written].length;
+  return [
+    ...(length > MAX_NAME
+      ? [
+          remark(
+            "C05",
+            `A name has ${length.toLocaleString("en-GB")} characters; a column has ${MAX_NAME} at most, and it is called by the first ${MAX_NAME}.`,
+          ),
+        ]
+      : []),
+    ...(hasSteeringCharacters(name)
+      ? [
+          remark(
+            "G13",
+            `The name "${quoteFound(name)}" holds control or text-direction characters; they are kept and shown written out.`,
+          ),
+        ]
+      : []),
+  ];
+}
 
 function cut(text: string): string {
   return [...text].slice(0, MAX_NAME).join("");
@@ -201,6 +228,7 @@ export function draftColumn(
     messages: [],
     questions: [],
   };
+  draft.messages.push(...nameRemarks(draft, (choice?.name ?? read.name).trim(), context));
   if (unit.from === "header" || unit.from === "cells") {
     const place = unit.from === "cells" ? "cells" : "header";
     draft.messages.push({
@@ -213,21 +241,53 @@ export function draftColumn(
       hint: "Write name [unit] to state it.",
     });
   }
-  if (kind === "energy") settleEnergy(draft, unit, answers);
+  if (kind === "energy") settleEnergy(draft, unit, answers, context);
   else settleProperty(draft, unit, answers, choice, context);
   return draft;
 }
 
-function settleEnergy(draft: DraftColumn, unit: ReturnType<typeof unitOf>, answers: ColumnAnswers): void {
+function otherUnitStated(
+  { header, name, unit }: DraftColumn,
+  stated: EnergyUnit,
+  from: "brackets" | "header" | "cells" | "nothing",
+  context: PlanContext,
+): IntakeMessage {
+  return {
+    code: "E06",
+    severity: "remark",
+    file: context.file,
+    line: context.headerLine,
+    found: quoteFound(header),
+    message: `energyUnit=${stated} was not used for "${quoteFound(name)}": its ${from === "cells" ? "cells say" : "header says"} ${unit}, and ${unit} was taken.`,
+    hint: `If the numbers are in ${stated}, write the header as ${quoteFound(name)} [${stated}] and send it again with replace=true.`,
+  };
+}
+
+function settleEnergy(
+  draft: DraftColumn,
+  unit: ReturnType<typeof unitOf>,
+  answers: ColumnAnswers,
+  context: PlanContext,
+): void {
   draft.unit = unit.known?.energy ?? (unit.text === null ? answers.energyUnit : null);
   if (draft.unit !== null) {
     if (unit.text === null) draft.why = "unit as stated";
+    else if (answers.energyUnit !== null && answers.energyUnit !== draft.unit && unit.from !== "said")
+      draft.messages.push(otherUnitStated(draft, answers.energyUnit, unit.from, context));
     return;
   }
-  const reason =
-    unit.text === null
-      ? `The header "${quoteFound(draft.header)}" names no unit.`
-      : `"${quoteFound(unit.text)}" is no unit of energy.`;
+  if (unit.text !== null) {
+    const found = quoteFound(unit.text);
+    draft.questions.push({
+      id: "energyUnit",
+      code: "energy-unit",
+      text: `In which unit are the energies "${quoteFound(draft.name)}"?`,
+      reason: `Its unit is ${found}, which is no unit of energy, and a unit that stands with the numbers counts before energyUnit. Write the header as ${quoteFound(draft.name)} [kcal/mol], [kJ/mol], [eV] or [hartree], or send columns=[{"column":${draft.column},"unit":"kcal/mol"}]. As a property in ${found} it is taken without kind=energy.`,
+      options: [],
+    });
+    return;
+  }
+  const reason = `The header "${quoteFound(draft.header)}" names no unit.`;
   const spread = spreadOf(draft.raw);
   draft.questions.push({
     id: "energyUnit",

@@ -5,6 +5,7 @@ import { energyRemarks } from "../intake/energy-remarks.ts";
 import { MessageList } from "../intake/message-list.ts";
 import { IntakeRejection } from "../intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
+import { temperatureRemarks } from "../intake/settle-energies.ts";
 import { quoteFound } from "../text/escape.ts";
 import { ENERGY_UNITS } from "../units.ts";
 import type { NumberStyle } from "./cells.ts";
@@ -317,10 +318,46 @@ export function planTable(table: RawTable, facts: TableFacts, answers: TableAnsw
     if (planned.kind === "energy") list.addAll(energyMessages(planned, table, match, facts.strip, answers));
     return planned;
   });
+  list.addAll(unusedAnswers(drafts, answers, table.file));
   if (columns.length === 0 && questions.length === 0 && !leftOut.some(({ why }) => why === CHOSEN))
     throw nothingLeft(table, leftOut);
   checkDistances(columns, table, match);
   return { columns, leftOut, match, questions: merged(questions), messages: list.messages() };
+}
+
+/** What was stated of energies and could not be used, or belongs to none; said, since numbers would be read otherwise. */
+function unusedAnswers(
+  drafts: readonly DraftColumn[],
+  answers: ColumnAnswers,
+  file: string,
+): IntakeMessage[] {
+  const { energyUnit, energyKind, energyTemperature, level } = answers;
+  const remark = (code: string, message: string, hint: string): IntakeMessage => ({
+    ...{ code, severity: "remark", file, line: 1, message, hint },
+  });
+  if (drafts.some(({ kind }) => kind === "energy")) {
+    const again = "send the table again with replace=true";
+    return temperatureRemarks({ energyKind: energyKind ?? "electronic", energyTemperature }, file, again);
+  }
+  const stated = Object.entries({ energyUnit, level, energyKind, energyTemperature })
+    .filter(([, value]) => value !== null)
+    .map(([name, value]) => `${name}=${quoteFound(String(value))}`);
+  if (stated.length === 0 || drafts.length === 0) return [];
+  const unitless = drafts.filter(({ unit }) => unit === null).map(({ name }) => `"${quoteFound(name)}"`);
+  const why =
+    answers.kind === "property"
+      ? "kind=property makes properties of all columns"
+      : unitless.length > 1 && energyUnit !== null
+        ? `${unitless.slice(0, 5).join(", ")}${unitless.length > 5 ? " and more" : ""} have no unit, and nobody can tell which of them are energies`
+        : "no column is an energy";
+  const hint = "If they are energies, send kind=energy, or write their headers as name [unit].";
+  return [
+    remark(
+      "E06",
+      `${stated.join(", ")} ${stated.length === 1 ? "was" : "were"} not used: ${why}. All columns are properties.`,
+      hint,
+    ),
+  ];
 }
 
 const CHOSEN = "not wanted";

@@ -81,7 +81,7 @@ export function settleEnergies(
       ...decision.messages,
       ...otherUnits,
       ...energyRemarks(column, { unit, kindStated: options.kindStated, include }),
-      ...temperatureRemarks(answers, column),
+      ...temperatureRemarks(answers, column.rows[0]?.file ?? ""),
       ...properties.messages,
     ],
   };
@@ -120,12 +120,16 @@ function inOneUnit(
   return { column: { ...column, values, present, count }, otherUnits };
 }
 
-/** A free energy belongs to one temperature, an electronic one to none (row E13). */
-function temperatureRemarks(
-  { energyKind, energyTemperature }: EnergyAnswers,
-  column: EnergyColumn,
+/**
+ * A free energy belongs to one temperature, an electronic one to none (row E13).
+ *
+ * @param again what sends the same numbers once more
+ */
+export function temperatureRemarks(
+  { energyKind, energyTemperature }: Pick<EnergyAnswers, "energyKind" | "energyTemperature">,
+  file: string,
+  again = "read the files again",
 ): IntakeMessage[] {
-  const file = column.rows[0]?.file ?? "";
   if (energyKind === "free" && energyTemperature === null) {
     return [
       {
@@ -133,7 +137,7 @@ function temperatureRemarks(
         severity: "remark",
         file,
         message: "These are free energies, and their temperature is not stated.",
-        hint: "State it as energyTemperature and read the files again: populations are right at that temperature only.",
+        hint: `State it as energyTemperature and ${again}: populations are right at that temperature only.`,
       },
     ];
   }
@@ -146,7 +150,7 @@ function temperatureRemarks(
       severity: "remark",
       file,
       message: `${kind} belong to no temperature: the ${energyTemperature} K that were stated are kept and not used.`,
-      hint: "If they are free energies or enthalpies, say so in energyKind and read the files again.",
+      hint: `If they are free energies or enthalpies, say so in energyKind and ${again}.`,
     },
   ];
 }

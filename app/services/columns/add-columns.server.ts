@@ -70,8 +70,9 @@ async function planFile(file: ReceivedFile, target: TargetEnsemble): Promise<Fil
 function openPoints(name: string, questions: readonly IntakeQuestion[]): DomainError {
   const faults = questions.map(({ id, text, reason, options }): Fault => {
     const choices = options.slice(0, 6).map((option) => `${id}=${option.id}`);
-    const how = choices.length === 0 ? `State ${id}.` : `State ${choices.join(" or ")}.`;
-    return { field: id, file: name, message: `${text} ${reason ?? ""} ${how}`.replace(/\s+/g, " ") };
+    // Without options the reason says what to do: stating the field would not help.
+    const how = choices.length === 0 ? "" : `State ${choices.join(" or ")}.`;
+    return { field: id, file: name, message: `${text} ${reason ?? ""} ${how}`.replace(/\s+/g, " ").trim() };
   });
   const detail = faults.map(({ message }) => message).join(" ");
   return new DomainError("invalid", "The file leaves something open", detail, {

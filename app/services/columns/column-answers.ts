@@ -1,8 +1,9 @@
+import { faultsOf } from "../../lib/api/fault-words.ts";
 import { type ColumnFields, columnChoicesSchema, columnFieldsSchema } from "../../lib/api/schemas.ts";
 import type { Delimiter } from "../../lib/csv/dialect.ts";
 import type { ColumnChoice } from "../../lib/csv/plan-column.ts";
 import type { TableAnswers } from "../../lib/csv/plan-table.ts";
-import { DomainError, type Fault } from "../../lib/errors.ts";
+import { DomainError } from "../../lib/errors.ts";
 
 /** 422 of a call with the field at fault. */
 export function invalidColumns(field: string, message: string): DomainError {
@@ -22,11 +23,9 @@ export class ColumnForm {
   }
 
   check(): ColumnFields {
-    const read = columnFieldsSchema.safeParse({ ...this.values });
+    const read = columnFieldsSchema.safeParse({ ...this.values }, { reportInput: true });
     if (read.success) return read.data;
-    const faults = read.error.issues.map(
-      (issue): Fault => ({ field: issue.path.join("."), message: issue.message }),
-    );
+    const faults = faultsOf(read.error);
     const detail = faults.map((fault) => `${fault.field}: ${fault.message}`).join(" ");
     throw new DomainError("invalid", "The columns are not right", detail, { faults });
   }
@@ -52,10 +51,10 @@ function choicesOf(text: string | undefined): Map<number, ColumnChoice> {
   } catch {
     throw invalidColumns("columns", 'This is no JSON: write [{"column": 2, "name": "..."}].');
   }
-  const read = columnChoicesSchema.safeParse(data);
+  const read = columnChoicesSchema.safeParse(data, { reportInput: true });
   if (!read.success) {
-    const [first] = read.error.issues;
-    throw invalidColumns("columns", `${first?.path.join(".")}: ${first?.message}`);
+    const [first] = faultsOf(read.error);
+    throw invalidColumns("columns", `${first?.field ?? ""}: ${first?.message ?? ""}`.replace(/^: /, ""));
   }
   return new Map(read.data.map((choice) => [choice.column, choice]));
 }

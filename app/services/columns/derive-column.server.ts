@@ -6,7 +6,7 @@ import { ENERGY_KINDS } from "../../lib/api/schemas.ts";
 import { initialRule } from "../../lib/averages/rule.ts";
 import { unpackColumn } from "../../lib/column-data.ts";
 import { DomainError } from "../../lib/errors.ts";
-import { plural } from "../../lib/format.ts";
+import { formatCount, plural } from "../../lib/format.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { frameStrip } from "../ensembles/accepted-frames.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
@@ -53,16 +53,24 @@ async function formulaFor(on: Queryable, ensembleId: string, expression: string)
   return readFormula(expression, rows.map(toInput));
 }
 
-async function computeNow(on: Queryable, ensembleId: string, formula: Formula, frames: number) {
+async function inputsOf(on: Queryable, ensembleId: string, formula: Formula, frames: number) {
   const needed = new Set(formula.inputs.map(({ column }) => column));
   const rows = await on
     .select({ id: columns.id, data: columns.data })
     .from(columns)
     .where(eq(columns.ensembleId, ensembleId));
-  const data = new Map(
+  return new Map(
     rows.filter(({ id }) => needed.has(id)).map((row) => [row.id, unpackColumn(row.data, frames)]),
   );
-  return formula.compute(data, frames);
+}
+
+/** Why a formula gives no frame a value: its columns never stand together, or what it divides by is 0. */
+function nothingWords({ having, byZero }: ReturnType<Formula["inputsIn"]>): string {
+  if (having === 0) return "No frame has a value: none has all columns that the formula needs.";
+  const all = `No frame has a value: ${plural(having, "frame has", "frames have")} all columns that the formula needs`;
+  return byZero > 0
+    ? `${all}, and in ${byZero === having ? "each" : formatCount(byZero)} of them it divides by zero.`
+    : `${all}, and in each of them the result is out of the range of numbers.`;
 }
 
 /** Reads a formula and says what it would give; nothing is kept. */
@@ -74,7 +82,8 @@ export async function checkFormula(options: {
   const { ensembleId } = await accessEnsemble(options.actor, "read", options.ensembleId);
   const strip = await frameStrip(ensembleId);
   const formula = await formulaFor(db, ensembleId, options.expression);
-  const { values, present } = await computeNow(db, ensembleId, formula, strip.length);
+  const inputs = await inputsOf(db, ensembleId, formula, strip.length);
+  const { values, present } = formula.compute(inputs, strip.length);
   const having = [...strip].flatMap((mark, k) => (mark !== "h" && present[k] === 1 ? [k] : []));
   const { kind, unit, energyKind, temperature, remarks } = formula;
   return {
@@ -124,10 +133,11 @@ export async function deriveColumn(options: {
     const same = rows.find(({ name }) => name === request.name);
     if (same !== undefined && request.replace === true)
       await refuseCircle(tx, at.ensembleId, same.id, formula);
-    const data = await computeNow(tx, at.ensembleId, formula, frames);
+    const inputs = await inputsOf(tx, at.ensembleId, formula, frames);
+    const data = formula.compute(inputs, frames);
     const count = data.present.reduce((sum, flag) => sum + flag, 0);
     if (count === 0) {
-      const message = "No frame has a value: none has all columns that the formula needs.";
+      const message = nothingWords(formula.inputsIn(inputs, frames));
       throw new DomainError("invalid", "The formula gives nothing", message, {
         faults: [{ field: "expression", message }],
       });

@@ -176,3 +176,25 @@ describe("a formula over columns", () => {
     );
   });
 });
+
+describe("what a formula says", () => {
+  it("quotes what was written, not the symbols that stand for it", () => {
+    expect(refusal('import("mu")')).toContain('import("mu")');
+    expect(refusal('"mu" "n"')).not.toMatch(/q\d/);
+  });
+
+  it("squares a unit and keeps quotients together", () => {
+    expect(readFormula("E_low * E_low", COLUMNS).unit).toMatch(/²$/);
+    expect(readFormula("mu * mu", COLUMNS).unit).toBe("debye²");
+  });
+
+  it("tells a division by zero from missing columns", () => {
+    const formula = readFormula("mu / n", COLUMNS);
+    const one = (value: number) => ({ values: Float64Array.of(value, 1), present: Uint8Array.of(1, 0) });
+    const data = new Map([
+      ["id-mu", one(3)],
+      ["id-n", one(0)],
+    ]);
+    expect(formula.inputsIn(data, 2)).toEqual({ having: 1, byZero: 1 });
+  });
+});

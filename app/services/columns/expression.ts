@@ -33,6 +33,8 @@ export interface Formula {
   /** What to look at twice. */
   remarks: string[];
   compute(columns: ReadonlyMap<string, ColumnData>, frames: number): ColumnData;
+  /** Frames that have all columns it needs, and those of them in which it divides by zero. */
+  inputsIn(columns: ReadonlyMap<string, ColumnData>, frames: number): { having: number; byZero: number };
 }
 
 type Operation =
@@ -95,6 +97,15 @@ export function readFormula(text: string, columns: readonly FormulaInput[]): For
     unit: result.unit === null ? null : (result.text ?? null),
     ...kindOf(walk.used(), columns),
     compute: (data, frames) => compute(result.operation, [...walk.used()], data, frames),
+    inputsIn: (data, frames) => {
+      const found = { having: 0, byZero: 0 };
+      for (let k = 0; k < frames; k++) {
+        if ([...walk.used()].some((id) => data.get(id)?.present[k] !== 1)) continue;
+        found.having += 1;
+        if (dividesByZero(result.operation, data, k)) found.byZero += 1;
+      }
+      return found;
+    },
   };
 }
 
@@ -131,9 +142,14 @@ class FormulaWalk {
     if (math.isSymbolNode(node)) return this.column(node.name);
     if (math.isParenthesisNode(node)) return this.type(node.content, depth + 1);
     if (math.isOperatorNode(node)) return this.operator(node as OperatorNode, depth);
-    throw refuseFormula(
-      `"${quoteFound(node.toString())}" is not allowed: names, numbers, + - * / and brackets are.`,
-    );
+    throw refuseFormula(`"${this.shown(node)}" is not allowed: names, numbers, + - * / and brackets are.`);
+  }
+
+  /** A part of the formula as it was written: quoted names stand as symbols in the tree. */
+  private shown(node: MathNode): string {
+    let text = node.toString();
+    for (const [symbol, name] of this.quoted) text = text.replaceAll(symbol, `"${name}"`);
+    return quoteFound(text);
   }
 
   private number(value: unknown): Typed {
@@ -163,7 +179,7 @@ class FormulaWalk {
 
   private operator(node: OperatorNode, depth: number): Typed {
     const { op, args, implicit } = node;
-    const shown = quoteFound(node.toString());
+    const shown = this.shown(node);
     if (implicit) {
       throw refuseFormula(
         `Between "${shown}" stands no sign: write + - * or /, and put names with blanks in quotes.`,
@@ -208,9 +224,20 @@ class FormulaWalk {
     const unit = (kind === "*"
       ? math.multiply(one, right.unit)
       : math.divide(one, right.unit)) as unknown as Unit;
-    const text = kind === "*" ? `${left.text} ${right.text}` : `${left.text ?? "1"}/(${right.text})`;
+    const text =
+      kind === "*" ? productText(left.text ?? "1", right.text ?? "1") : `${left.text ?? "1"}/(${right.text})`;
     return { operation, unit, text: text.slice(0, 40) };
   }
+}
+
+/**
+ * Unit of a product; equal units are squared, brackets keep a quotient together.
+ *
+ * @example productText("kcal/mol", "kcal/mol") // "(kcal/mol)²"
+ */
+function productText(left: string, right: string): string {
+  const whole = (text: string) => (/[ /]/.test(text) ? `(${text})` : text);
+  return left === right && !/[²³]$/.test(left) ? `${whole(left)}²` : `${whole(left)} ${whole(right)}`;
 }
 
 const ORDER: readonly EnergyKind[] = ["electronic", "zero-point", "enthalpy", "free"];
@@ -251,6 +278,13 @@ function compute(
     present[k] = 1;
   }
   return { values, present };
+}
+
+function dividesByZero(operation: Operation, columns: ReadonlyMap<string, ColumnData>, k: number): boolean {
+  if (operation.kind === "number" || operation.kind === "column") return false;
+  if (operation.kind === "negate") return dividesByZero(operation.of, columns, k);
+  if (operation.kind === "/" && valueAt(operation.right, columns, k) === 0) return true;
+  return dividesByZero(operation.left, columns, k) || dividesByZero(operation.right, columns, k);
 }
 
 function valueAt(operation: Operation, columns: ReadonlyMap<string, ColumnData>, k: number): number {

@@ -2,6 +2,7 @@ import { and, asc, eq, inArray, isNull, or } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { frames } from "../../db/schema.server.ts";
 import type { ColumnFields } from "../../lib/api/schemas.ts";
+import { initialRule, ruleAgainstUnit } from "../../lib/averages/rule.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { formatCount, plural } from "../../lib/format.ts";
 import { decideEnergies, type EnergyAnswers } from "../../lib/intake/decide-energies.ts";
@@ -368,13 +369,22 @@ function byWords(messages: IntakeMessage[], by: string): IntakeMessage[] {
   }));
 }
 
+/** The rule asked for, where the unit of the column does not speak against it; else that of its unit. */
+function ruleFor({ name, kind, unit }: NewColumn, fields: ColumnFields): PlannedToStore["rule"] {
+  if (kind === "energy") return undefined;
+  const rule = fields.rule ?? initialRule(unit);
+  const against = ruleAgainstUnit(rule, unit);
+  if (against === null) return rule;
+  throw invalidColumns("rule", `${rule} averages ${against}; "${quoteFound(name)}" is in ${unit}.`);
+}
+
 function toStore(
   column: NewColumn,
   data: PlannedToStore["data"],
   name: string,
   fields: ColumnFields,
 ): PlannedToStore {
-  const rule = fields.rule ?? "linear";
+  const rule = ruleFor(column, fields);
   return {
     column: null,
     header: column.name,
@@ -384,7 +394,7 @@ function toStore(
     unit: column.unit,
     data,
     origin: `structures:${name}`,
-    ...(column.kind === "property" ? { rule } : {}),
+    ...(rule === undefined ? {} : { rule }),
     energyKind: fields.energyKind ?? "electronic",
     temperature: fields.energyTemperature ?? null,
     kindStated: fields.energyKind !== undefined,
