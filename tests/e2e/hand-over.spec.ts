@@ -186,7 +186,7 @@ test.describe("handing over", () => {
     await expect(phone.getByRole("heading", { name: "Nothing here" })).toBeVisible();
     await expect(phone.getByText("Ask Robin")).toHaveCount(0);
     expect((await phone.goto(invitation))?.status()).toBe(404);
-    await expect(phone.getByRole("heading", { name: "This invitation has ended" })).toBeVisible();
+    await expect(phone.getByRole("heading", { name: "No open invitation here" })).toBeVisible();
     await ownerPage.goto(`${team}/tokens`);
     await hydrated(ownerPage);
     await ownerPage.getByRole("button", { name: "Revoke Batch job" }).click();

@@ -45,7 +45,7 @@ test("an owner invites by mail; the newcomer joins once, and a new role counts a
   await expect(second.getByRole("button", { name: "Drop or choose files" })).toHaveCount(0);
   // The link worked once.
   await second.goto(link);
-  await expect(second.getByRole("heading", { name: "This invitation has ended" })).toBeVisible();
+  await expect(second.getByRole("heading", { name: "No open invitation here" })).toBeVisible();
 
   await page.reload();
   await hydrated(page);

@@ -11,7 +11,7 @@ export function EndedLink({ endedAt, contact }: { endedAt: string; contact: stri
       rule="held"
       title="This link has ended"
       lead={`It showed one edition of a conformer ensemble until ${formatDateTime(endedAt)}.`}
-      foot="To a program, ended, withdrawn and never made look alike."
+      foot="What you printed or downloaded stays valid: its checksums do not change."
     >
       <p className="text-ink-2">
         The edition is kept; only the way to it has closed. Ask the person who sent you the link for a new
@@ -19,10 +19,7 @@ export function EndedLink({ endedAt, contact }: { endedAt: string; contact: stri
       </p>
       <Facts
         ruled
-        facts={[
-          { label: "Whom to ask", value: contact === "" ? "whoever sent you the link" : contact },
-          { label: "Your copy", value: "downloads keep their checksums" },
-        ]}
+        facts={[{ label: "Whom to ask", value: contact === "" ? "whoever sent you the link" : contact }]}
       />
       <p className="text-ink-2">
         <TextLink to={href("/login")}>Sign in</TextLink> if you belong to the team.

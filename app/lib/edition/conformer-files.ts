@@ -34,9 +34,10 @@ export function* conformerFiles(
       ...(relativeEnergy === null ? [] : [`relative_kcal_mol=${exactNumber(relativeEnergy)}`]),
     ];
     // Symbol and three coordinates; labels of the file would be columns that plain XYZ does not have.
-    const atoms = lines
-      .slice(index * height + 2, (index + 1) * height)
-      .map((line) => line.split(/\s+/).slice(0, 4).join(" "));
+    const atoms = lines.slice(index * height + 2, (index + 1) * height).map((line) => {
+      const [symbol = "", ...axes] = line.split(/\s+/).slice(0, 4);
+      return [symbol, ...axes.map(plainDecimal)].join(" ");
+    });
     const population = populations?.values[index]?.population;
     const cells = [
       name,
@@ -51,4 +52,9 @@ export function* conformerFiles(
     yield { name, text: `${ensemble.atoms}\n${comment.join(" ")}\n${atoms.join("\n")}\n` };
   }
   yield { name: "conformers.txt", text: `${list.join("\n")}\n` };
+}
+
+/** A coordinate as every program reads it: a whole number with its point, zero without a sign. */
+function plainDecimal(text: string): string {
+  return /^-?\d+$/.test(text) ? `${Number(text) === 0 ? "0" : text}.0` : text;
 }

@@ -127,7 +127,7 @@ describe("one file a conformer", () => {
     populations: null,
   } as unknown as Parameters<typeof conformerFiles>[0];
   const xyz = content.kept
-    .map(() => '2\nProperties=x name="a b"\nO     0.5   0   1 O1\nH     0  0.25  -1 H2\n')
+    .map(() => '2\nProperties=x name="a b"\nO     0.5   -0   1 O1\nH     0  0.25  -1 H2\n')
     .join("");
 
   it("is plain XYZ with charge and multiplicity, named in the order of the set, with a list", () => {
@@ -135,7 +135,7 @@ describe("one file a conformer", () => {
     expect(files).toHaveLength(11);
     expect(files[0]).toEqual({
       name: "c01-frame-1.xyz",
-      text: "2\ncharge=-1 multiplicity=2 conformer=c1 frame=1 relative_kcal_mol=0\nO 0.5 0 1\nH 0 0.25 -1\n",
+      text: "2\ncharge=-1 multiplicity=2 conformer=c1 frame=1 relative_kcal_mol=0\nO 0.5 0.0 1.0\nH 0.0 0.25 -1.0\n",
     });
     expect(files[9]?.name).toBe("c10-frame-28.xyz");
     expect(files[10]?.name).toBe("conformers.txt");

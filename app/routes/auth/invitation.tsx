@@ -64,8 +64,8 @@ export default function Page({ loaderData, actionData }: Route.ComponentProps) {
     return (
       <Door
         rule="held"
-        title="This invitation has ended"
-        lead="It was used or withdrawn, or is older than seven days."
+        title="No open invitation here"
+        lead="An invitation works once and for seven days, and can be withdrawn. Or the address is not complete: open it from the letter itself."
         foot="An owner of the team can send another."
       >
         <ButtonLink kind="primary" wide to={href("/login")}>

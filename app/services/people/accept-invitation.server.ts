@@ -70,8 +70,8 @@ export async function findInvitation(secret: string): Promise<OpenInvitation | n
 const ended = () =>
   new DomainError(
     "not-found",
-    "This invitation has ended",
-    "It was used or withdrawn, or is older than seven days. Ask for another.",
+    "No open invitation",
+    "It was used or withdrawn, is older than seven days, or its address is not complete. Ask for another.",
   );
 
 /** Uses the invitation up and makes the person a member, in the transaction of the caller. */
