@@ -6,6 +6,7 @@ import { defineConfig } from "vitest/config";
 const env = {
   NODE_ENV: "test",
   DATABASE_URL: "mysql://nobody@127.0.0.1:1/none",
+  DATABASE_MIGRATION_URL: "",
   DATABASE_DURABILITY: "relaxed",
   APP_ORIGIN: "http://127.0.0.1:3000",
   SESSION_SECRET: "a key of the tests that signs nothing real",

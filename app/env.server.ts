@@ -43,6 +43,13 @@ const schema = z
     DATABASE_URL: text(
       z.string({ error: "is missing" }).regex(/^(mysql|mariadb):\/\//, "must begin with mysql://"),
     ),
+    /** The account that owns the tables, where the application's own may only read and write rows. */
+    DATABASE_MIGRATION_URL: text(
+      z
+        .string()
+        .regex(/^(mysql|mariadb):\/\//, "must begin with mysql://")
+        .optional(),
+    ),
     /** `relaxed` lets throw-away servers of tests run without durable settings. */
     DATABASE_DURABILITY: text(z.enum(["full", "relaxed"]).default("full")),
     /** Signs the session cookie; two keys with a comma between them are both accepted, the first one signs. */

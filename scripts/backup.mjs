@@ -1,6 +1,7 @@
 // `npm run -s backup -- DIR` writes everything that the instance keeps into a new folder; it may be running.
 // `npm run -s restore -- DIR` loads it into an empty database and makes sure that every row came back.
-// Both use DATABASE_URL, or the server of .data, which they start where it does not run.
+// Both use the account that owns the tables: that of DATABASE_MIGRATION_URL, else of DATABASE_URL; or the server of .data,
+// which they start where it does not run.
 import { readFileSync } from "node:fs";
 import path from "node:path";
 import { openDatabase } from "./database.mjs";
@@ -20,7 +21,8 @@ async function main([act, folder, ...rest]) {
   const { version } = JSON.parse(readFileSync("package.json", "utf8"));
   const say = console.error;
   const own = process.env.DATABASE_URL ? null : await openDatabase({ folder: dataFolder(), say });
-  const url = own?.url ?? process.env.DATABASE_URL.replace(/^mariadb:/, "mysql:");
+  const given = process.env.DATABASE_MIGRATION_URL || process.env.DATABASE_URL;
+  const url = own?.ownerUrl ?? given.replace(/^mariadb:/, "mysql:");
   try {
     const done = await (act === "backup" ? backUp : restore)({ url, folder: place, version, say });
     const what = `${count.format(done.rows)} rows in ${count.format(Object.keys(done.tables).length)} tables`;

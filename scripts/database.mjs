@@ -1,5 +1,5 @@
 // Starts and stops a MariaDB server of our own: loopback only, data in a folder, no settings of the machine.
-//   node scripts/database.mjs start | stop | url     the server of .data (what `npm start` uses)
+//   node scripts/database.mjs start | stop | url     the server of .data or DATA_DIRECTORY (what `npm start` uses)
 //   node scripts/database.mjs throwaway              one for a while: prints its address, ends with Ctrl-C
 import {
   chmodSync,
@@ -15,7 +15,16 @@ import os from "node:os";
 import path from "node:path";
 import { needProgram } from "./lib/debian.mjs";
 import { withLock } from "./lib/lock.mjs";
-import { endServer, greets, placesIn, readState, serverPid, startServer, urlOf } from "./lib/mariadb.mjs";
+import {
+  endServer,
+  greets,
+  ownerUrlOf,
+  placesIn,
+  readState,
+  serverPid,
+  startServer,
+  urlOf,
+} from "./lib/mariadb.mjs";
 import { ROOT, StartError, startTicks } from "./lib/processes.mjs";
 
 const LOOK_MS = 5_000;
@@ -32,10 +41,21 @@ function livingUses(places) {
   return living;
 }
 
+/** The server that runs in a folder; null where none does, or one of an older version that nobody uses any more. */
+async function runningServer(places) {
+  const known = serverPid(places) === null ? null : readState(places);
+  if (!known || !(await greets(known.port))) return null;
+  if (known.ownerPassword || livingUses(places).length > 0) return known;
+  // It knows one account for everything; started again it has two.
+  await endServer(places);
+  return null;
+}
+
 /**
  * Opens the database of a folder: installs, makes, starts what is missing, or joins the server that runs there.
  *
- * @returns its address, and `close`, which ends the server unless another process uses it
+ * @returns its address for the application, the one of the account that owns the tables, and `close`, which ends the
+ *   server unless another process uses it
  */
 export async function openDatabase({
   folder = path.join(ROOT, ".data"),
@@ -48,15 +68,14 @@ export async function openDatabase({
   const use = path.join(places.uses, `${process.pid}-${startTicks(process.pid)}`);
   mkdirSync(places.folder, { recursive: true, mode: 0o700 });
   const state = await withLock(places.lock, async () => {
-    const known = serverPid(places) === null ? null : readState(places);
-    const current =
-      known && (await greets(known.port)) ? known : await startServer(places, { durable, broad });
+    const current = (await runningServer(places)) ?? (await startServer(places, { durable, broad }));
     mkdirSync(places.uses, { recursive: true });
     writeFileSync(use, "");
     return current;
   });
   return {
     url: urlOf(state),
+    ownerUrl: ownerUrlOf(state),
     /** Starts the server again when it has been gone for a while, on the port that the application knows. */
     keepAlive(log) {
       let missed = 0;
@@ -89,7 +108,7 @@ export async function openDatabase({
   };
 }
 
-/** Address of the server that runs in a folder, or null. Starts nothing. */
+/** Address of the server that runs in a folder, for the application, or null. Starts nothing. */
 export function runningUrl(folder = path.join(ROOT, ".data")) {
   const places = placesIn(path.resolve(folder));
   const state = serverPid(places) === null ? null : readState(places);
@@ -121,6 +140,7 @@ export async function openThrowaway(say) {
   const database = await openDatabase({ folder, durable: false, broad: true, say });
   return {
     url: database.url,
+    ownerUrl: database.ownerUrl,
     async close() {
       await database.close();
       rmSync(folder, { recursive: true, force: true });
@@ -129,23 +149,27 @@ export async function openThrowaway(say) {
 }
 
 async function main(act) {
+  // Here, since that module needs this one.
+  const { dataFolder, loadSettings } = await import("./lib/prepare.mjs");
+  loadSettings();
+  const folder = dataFolder();
   if (act === "start") {
     // The note of use ends with this command; the server stays until `stop`, or until an instance that joined it ends.
-    const database = await openDatabase({ say: console.error });
+    const database = await openDatabase({ folder, say: console.error });
     console.log(database.url);
     return;
   }
   if (act === "stop") {
-    const places = placesIn(path.join(ROOT, ".data"));
+    const places = placesIn(folder);
     const others = livingUses(places);
     if (others.length > 0)
       throw new StartError(`Still used by process ${others.map((one) => one.split("-")[0]).join(", ")}.`);
     return endServer(places);
   }
   if (act === "url") {
-    const url = runningUrl();
+    const url = runningUrl(folder);
     if (!url)
-      throw new StartError("No database runs in .data. Start one with: node scripts/database.mjs start");
+      throw new StartError(`No database runs in ${folder}. Start one with: node scripts/database.mjs start`);
     console.log(url);
     return;
   }

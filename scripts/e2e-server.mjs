@@ -17,6 +17,7 @@ Object.assign(process.env, {
   BUILD_FOLDER: TEST_FOLDER,
   DATA_DIRECTORY: folder,
   DATABASE_URL: process.env.TEST_DATABASE_URL ?? database.url,
+  DATABASE_MIGRATION_URL: process.env.TEST_DATABASE_OWNER_URL ?? database?.ownerUrl ?? "",
   DATABASE_DURABILITY: "relaxed",
   ARGON2_MEMORY_KIB: "1024",
   DEMO_PASSWORD,

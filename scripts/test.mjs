@@ -90,8 +90,8 @@ async function main() {
   await needPackages(say);
   const env = { ...process.env, CI: process.env.CI ?? "1" };
   // Settings of a real instance must not reach its tests.
-  for (const key of ["DATABASE_URL", "APP_ORIGIN", "SESSION_SECRET", "PORT", "SMTP_URL", "NODE_ENV"])
-    delete env[key];
+  const foreign = ["DATABASE_URL", "DATABASE_MIGRATION_URL", "APP_ORIGIN", "SESSION_SECRET", "PORT"];
+  for (const key of [...foreign, "SMTP_URL", "NODE_ENV"]) delete env[key];
   state.folder = mkdtempSync(path.join(os.tmpdir(), "lowlying-test-"));
   // Packages first, one at a time: what follows needs them, and none of it the whole machine.
   const headless = ["chromium-headless-shell", "chromium-headless-shell"];
@@ -105,6 +105,7 @@ async function main() {
   for (const { reason } of [checked, built]) if (reason) throw reason;
   Object.assign(env, {
     TEST_DATABASE_URL: state.database.url,
+    TEST_DATABASE_OWNER_URL: state.database.ownerUrl,
     WORKER_DIRECTORY: places.worker,
     CHROMIUM: chromium,
   });

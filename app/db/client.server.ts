@@ -1,5 +1,5 @@
 import { drizzle, type MySql2Database } from "drizzle-orm/mysql2";
-import { createPool, type Pool } from "mysql2/promise";
+import { type Connection, createConnection, createPool, type Pool } from "mysql2/promise";
 import { env } from "../env.server.ts";
 import { driverCode } from "./driver-errors.server.ts";
 import * as schema from "./schema.server.ts";
@@ -16,18 +16,24 @@ const kept = globalThis as typeof globalThis & { lowlyingPool?: Pool };
 const SESSION_SETTINGS =
   "set time_zone = '+00:00', sql_mode = 'STRICT_ALL_TABLES,ERROR_FOR_DIVISION_BY_ZERO,NO_ENGINE_SUBSTITUTION', names utf8mb4 collate utf8mb4_bin";
 
+const uriOf = (url: string) => url.replace(/^mariadb:/, "mysql:");
+
+const CONNECTION = {
+  // A database that is away must be noticed while a person still waits for the page.
+  connectTimeout: 1_500,
+  timezone: "Z",
+  charset: "utf8mb4_bin",
+  // MariaDB's JSON is text; the column type parses and checks it.
+  jsonStrings: true,
+} as const;
+
 function openPool(): Pool {
   const opened = createPool({
-    uri: env().DATABASE_URL.replace(/^mariadb:/, "mysql:"),
+    ...CONNECTION,
+    uri: uriOf(env().DATABASE_URL),
     connectionLimit: 12,
-    // A database that is away must be noticed while a person still waits for the page.
-    connectTimeout: 1_500,
     maxIdle: 4,
     idleTimeout: 60_000,
-    timezone: "Z",
-    charset: "utf8mb4_bin",
-    // MariaDB's JSON is text; the column type parses and checks it.
-    jsonStrings: true,
   });
   opened.on("connection", (connection) => {
     // Queued ahead of the caller's first statement on this connection.
@@ -40,6 +46,17 @@ function openPool(): Pool {
 export function pool(): Pool {
   kept.lowlyingPool ??= openPool();
   return kept.lowlyingPool;
+}
+
+/** One connection of the account that owns the tables; the caller ends it. */
+export async function connectAsOwner(): Promise<Connection> {
+  const { DATABASE_URL, DATABASE_MIGRATION_URL } = env();
+  const connection = await createConnection({
+    ...CONNECTION,
+    uri: uriOf(DATABASE_MIGRATION_URL ?? DATABASE_URL),
+  });
+  await connection.query(SESSION_SETTINGS);
+  return connection;
 }
 
 /** Relational queries run in planetscale mode: MariaDB has no LATERAL. */

@@ -1,10 +1,11 @@
 import { existsSync, readFileSync } from "node:fs";
 import path from "node:path";
 import { readMigrationFiles } from "drizzle-orm/migrator";
-import type { PoolConnection, RowDataPacket } from "mysql2/promise";
+import type { Connection, RowDataPacket } from "mysql2/promise";
 import { env } from "../env.server.ts";
-import { pool } from "./client.server.ts";
+import { connectAsOwner, pool } from "./client.server.ts";
 import { driverCode } from "./driver-errors.server.ts";
+import { ownTriggers } from "./rights.server.ts";
 
 /** The server keeps data in a way that the application does not accept; says what to set. */
 export class DatabaseSettingsError extends Error {
@@ -48,7 +49,7 @@ export function settingsFaults(found: Settings, durability: "full" | "relaxed"):
   return faults;
 }
 
-async function readSettings(connection: PoolConnection): Promise<Settings> {
+async function readSettings(connection: Connection): Promise<Settings> {
   const [rows] = await connection.query<(RowDataPacket & Settings)[]>(
     `select @@global.innodb_flush_log_at_trx_commit as flush, @@global.innodb_doublewrite as doublewrite,
       @@global.sql_mode as mode, @@character_set_database as charset, @@collation_database as collation,
@@ -60,7 +61,7 @@ async function readSettings(connection: PoolConnection): Promise<Settings> {
 }
 
 /** Names and texts compare byte for byte; a database made with another collation is set so while it is empty. */
-async function compareByByte(connection: PoolConnection, found: Settings): Promise<void> {
+async function compareByByte(connection: Connection, found: Settings): Promise<void> {
   if (found.collation === "utf8mb4_bin") return;
   const [rows] = await connection.query<RowDataPacket[]>(
     "select 1 from information_schema.tables where table_schema = database() limit 1",
@@ -69,18 +70,19 @@ async function compareByByte(connection: PoolConnection, found: Settings): Promi
 }
 
 /** A connection, or why there is none, without the address: a password stands in it. */
-async function connect(): Promise<PoolConnection> {
+async function connect(): Promise<Connection> {
   try {
-    return await pool().getConnection();
+    return await connectAsOwner();
   } catch (error) {
+    const setting = env().DATABASE_MIGRATION_URL === undefined ? "DATABASE_URL" : "DATABASE_MIGRATION_URL";
     throw new DatabaseSettingsError(
-      `The database of DATABASE_URL cannot be used (${driverCode(error) ?? "no answer"}). Is it running, and are its address, name and password right?`,
+      `The database of ${setting} cannot be used (${driverCode(error) ?? "no answer"}). Is it running, and are its address, name and password right?`,
       { cause: error },
     );
   }
 }
 
-async function withLock<Result>(work: (connection: PoolConnection) => Promise<Result>): Promise<Result> {
+async function withLock<Result>(work: (connection: Connection) => Promise<Result>): Promise<Result> {
   const connection = await connect();
   try {
     const [rows] = await connection.query<RowDataPacket[]>(
@@ -95,7 +97,7 @@ async function withLock<Result>(work: (connection: PoolConnection) => Promise<Re
       await connection.query("select release_lock(concat(database(), '.migrate'))");
     }
   } finally {
-    connection.release();
+    await connection.end();
   }
 }
 
@@ -109,7 +111,7 @@ const ALREADY = new Set([
   "ER_CANT_CREATE_TABLE",
 ]);
 
-async function readStep(connection: PoolConnection, migration: number) {
+async function readStep(connection: Connection, migration: number) {
   await connection.query("insert ignore into __migration_steps values (?, 0, 0)", [migration]);
   const [rows] = await connection.query<RowDataPacket[]>(
     "select done, failed from __migration_steps where migration = ?",
@@ -118,7 +120,7 @@ async function readStep(connection: PoolConnection, migration: number) {
   return { done: Number(rows[0]?.done ?? 0), failed: Number(rows[0]?.failed ?? 0) === 1 };
 }
 
-async function runStep(connection: PoolConnection, migration: number, sql: string, mayBeDone: boolean) {
+async function runStep(connection: Connection, migration: number, sql: string, mayBeDone: boolean) {
   try {
     await connection.query(sql);
   } catch (error) {
@@ -133,23 +135,46 @@ async function runStep(connection: PoolConnection, migration: number, sql: strin
   ]);
 }
 
+/** Time stamps of the migrations that are in. */
+async function finishedMigrations(connection: Connection): Promise<Set<number>> {
+  const [tables] = await connection.query<RowDataPacket[]>("show tables like '\\_\\_drizzle\\_migrations'");
+  if (tables.length === 0) return new Set();
+  const [rows] = await connection.query<RowDataPacket[]>("select created_at from __drizzle_migrations");
+  return new Set(rows.map((row) => Number(row.created_at)));
+}
+
+/** Where what has been done is noted. */
+async function makeNotes(connection: Connection): Promise<void> {
+  try {
+    await connection.query(
+      "create table if not exists __drizzle_migrations (id serial primary key, hash text not null, created_at bigint)",
+    );
+    await connection.query(
+      "create table if not exists __migration_steps (migration bigint primary key, done int not null, failed tinyint not null)",
+    );
+  } catch (error) {
+    if (driverCode(error) !== "ER_TABLEACCESS_DENIED_ERROR") throw error;
+    throw new DatabaseSettingsError(
+      "This version changes the database's tables, and the account of DATABASE_URL may not. Give the address of the account that owns them in DATABASE_MIGRATION_URL.",
+      { cause: error },
+    );
+  }
+}
+
 /**
  * Runs what is not in yet, a statement at a time. MariaDB commits every change of a table by itself, so the number of
  * statements done is kept beside it: a run that was cut short goes on where it stopped, and only the one statement whose
  * record may be missing is allowed to find its work done.
  */
-async function runMigrations(connection: PoolConnection): Promise<void> {
-  await connection.query(
-    "create table if not exists __drizzle_migrations (id serial primary key, hash text not null, created_at bigint)",
-  );
-  await connection.query(
-    "create table if not exists __migration_steps (migration bigint primary key, done int not null, failed tinyint not null)",
-  );
-  const [rows] = await connection.query<RowDataPacket[]>("select created_at from __drizzle_migrations");
-  const finished = new Set(rows.map((row) => Number(row.created_at)));
+async function runMigrations(connection: Connection): Promise<void> {
   const folder = path.resolve(env().MIGRATIONS_DIRECTORY);
-  for (const { folderMillis, hash, sql } of readMigrationFiles({ migrationsFolder: folder })) {
-    if (finished.has(folderMillis)) continue;
+  const finished = await finishedMigrations(connection);
+  const open = readMigrationFiles({ migrationsFolder: folder }).filter(
+    ({ folderMillis }) => !finished.has(folderMillis),
+  );
+  if (open.length === 0) return;
+  await makeNotes(connection);
+  for (const { folderMillis, hash, sql } of open) {
     const { done, failed } = await readStep(connection, folderMillis);
     for (const [step, statement] of sql.entries()) {
       if (step >= done) await runStep(connection, folderMillis, statement, step === done && !failed);
@@ -178,6 +203,7 @@ export async function migrateDatabase(): Promise<void> {
     }
     await compareByByte(connection, found);
     await runMigrations(connection);
+    if (env().DATABASE_MIGRATION_URL !== undefined) await ownTriggers(connection);
   });
 }
 

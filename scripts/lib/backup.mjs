@@ -39,6 +39,22 @@ const nowhere = () => new Writable({ write: (_data, _encoding, done) => done() }
 
 const rowsOf = (tables) => Object.values(tables).reduce((sum, { rows }) => sum + rows, 0);
 
+/** An account that may not read triggers cannot save those that keep the logbook and the editions. */
+async function needTriggers(url) {
+  const connection = await createConnection({ uri: url, connectTimeout: 5_000 });
+  try {
+    const [tables] = await connection.query("show tables like 'logbook'");
+    if (tables.length > 0) await connection.query("show create trigger logbook_never_updated");
+  } catch (error) {
+    if (!/TRG_DOES_NOT_EXIST|ACCESS_?DENIED/.test(error.code)) throw error;
+    throw new StartError(
+      "This database account does not see the triggers that keep the logbook, so they would be missing from the backup. Give the address of the account that owns the tables in DATABASE_MIGRATION_URL.",
+    );
+  } finally {
+    await connection.end();
+  }
+}
+
 /**
  * Writes a whole database into a folder: everything that the product keeps, as it stood at one moment. It may be in use.
  *
@@ -50,6 +66,7 @@ export async function backUp({ url, folder, version, say = () => {} }) {
   if (existsSync(places.dump) || existsSync(places.list)) {
     throw new StartError(`${folder} holds a backup already. Name another folder.`);
   }
+  await needTriggers(url);
   mkdirSync(folder, { recursive: true, mode: 0o700 });
   const part = `${places.dump}.part`;
   const hash = hashing();

@@ -68,5 +68,6 @@ export async function prepare(say) {
   if (!own) return null;
   const database = await openDatabase({ folder: dataFolder(), say });
   process.env.DATABASE_URL = database.url;
+  process.env.DATABASE_MIGRATION_URL = database.ownerUrl;
   return database;
 }

@@ -1,8 +1,10 @@
 import { readMigrationFiles } from "drizzle-orm/migrator";
 import { type Connection, createConnection, type RowDataPacket } from "mysql2/promise";
 import { afterAll, beforeAll, describe, expect, inject, it, vi } from "vitest";
-import { db } from "~/db/client.server";
+import { connectAsOwner, db, pool } from "~/db/client.server";
+import { driverCode } from "~/db/driver-errors.server";
 import { settingsFaults } from "~/db/migrate.server";
+import { findRightsOverRecords, ownTriggers, rightsOverRecords } from "~/db/rights.server";
 import { logbook } from "~/db/schema.server";
 
 /** Every table with its columns, keys and triggers, as the server tells them. */
@@ -28,7 +30,7 @@ describe("migrations", () => {
   const name = `lowlying_test_migrations_${process.env.VITEST_POOL_ID ?? "0"}`;
 
   beforeAll(async () => {
-    connection = await createConnection({ uri: inject("databaseUrl"), multipleStatements: false });
+    connection = await createConnection({ uri: inject("ownerUrl"), multipleStatements: false });
   });
   afterAll(async () => {
     await connection.query(`drop database if exists ${name}`);
@@ -37,11 +39,11 @@ describe("migrations", () => {
 
   /** Runs the application's migration on another database, in a module world of its own. */
   async function migrateOther(): Promise<void> {
-    const url = new URL(inject("databaseUrl"));
+    const url = new URL(inject("ownerUrl"));
     url.pathname = `/${name}`;
     vi.resetModules();
-    const before = process.env.DATABASE_URL;
-    process.env.DATABASE_URL = url.href;
+    const before = process.env.DATABASE_MIGRATION_URL;
+    process.env.DATABASE_MIGRATION_URL = url.href;
     const kept = globalThis as { lowlyingPool?: unknown };
     const pool = kept.lowlyingPool;
     kept.lowlyingPool = undefined;
@@ -50,7 +52,7 @@ describe("migrations", () => {
       const { closeDatabase } = await import("~/db/client.server");
       await migrateDatabase().finally(closeDatabase);
     } finally {
-      process.env.DATABASE_URL = before;
+      process.env.DATABASE_MIGRATION_URL = before;
       kept.lowlyingPool = pool;
     }
   }
@@ -110,10 +112,10 @@ describe("migrations", () => {
     await migrateOther();
     const whole = await shapeOf(connection);
     await fresh();
-    const url = new URL(inject("databaseUrl"));
+    const url = new URL(inject("ownerUrl"));
     url.pathname = `/${name}`;
     const { spawn } = await import("node:child_process");
-    const script = `process.env.DATABASE_URL=${JSON.stringify(url.href)};
+    const script = `process.env.DATABASE_MIGRATION_URL=${JSON.stringify(url.href)};
       const { tsImport } = await import("tsx/esm/api");
       const { migrateDatabase } = await tsImport("./app/db/migrate.server.ts", import.meta.url);
       await migrateDatabase(); process.exit(0);`;
@@ -136,6 +138,67 @@ describe("the logbook", () => {
     await expect(db.delete(logbook).catch(words)).resolves.toContain("append-only");
     expect(await db.select().from(logbook)).toHaveLength(1);
   });
+
+  it("cannot be emptied, nor its guards be taken away, by the application's account (security G03)", async () => {
+    await db.insert(logbook).values({ type: "sign-in", data: {}, createdAt: new Date() });
+    const refused = async (statement: string) =>
+      driverCode(
+        await pool()
+          .query(statement)
+          .catch((error: unknown) => error),
+      );
+    for (const table of ["logbook", "editions", "edition_files", "verifications"]) {
+      for (const statement of [
+        `truncate table ${table}`,
+        `drop table ${table}`,
+        `alter table ${table} engine=memory`,
+        `rename table ${table} to elsewhere`,
+        `create trigger mine before insert on ${table} for each row set @a = 1`,
+        `drop trigger ${table}_never_updated`,
+        `lock tables ${table} write`,
+        `create or replace table ${table} (id int)`,
+      ])
+        expect(await refused(statement), statement).toMatch(/ACCESS_?DENIED/);
+    }
+    expect(await db.select().from(logbook)).not.toHaveLength(0);
+    expect(await findRightsOverRecords()).toEqual([]);
+  });
+
+  it("keeps its guards when the account that made them has lost its rights", async () => {
+    const owner = await connectAsOwner();
+    const guards = async () =>
+      (
+        await owner.query<RowDataPacket[]>(
+          "select trigger_name, definer, action_statement from information_schema.triggers where trigger_schema = database() order by 1",
+        )
+      )[0];
+    const before = await guards();
+    expect(before.length).toBeGreaterThan(5);
+    await ownTriggers(owner);
+    expect(await guards()).toEqual(before);
+    await owner.end();
+  });
+});
+
+describe("rights of the application's account", () => {
+  const over = (grant: string) => rightsOverRecords([`GRANT ${grant} TO \`app\`@\`%\``], "lowlying");
+
+  it("to rows alone are right", () => {
+    expect(over("USAGE ON *.*")).toEqual([]);
+    expect(over("SELECT, INSERT, UPDATE, DELETE ON `lowlying`.*")).toEqual([]);
+    expect(over("ALL PRIVILEGES ON `other`.*")).toEqual([]);
+    expect(over("DROP ON `lowlying`.`sifts`")).toEqual([]);
+    expect(over("ALL PRIVILEGES ON `low\\_lying`.*")).toEqual([]);
+  });
+
+  it.each([
+    ["ALL PRIVILEGES ON *.*", ["ALL PRIVILEGES"]],
+    ["ALL PRIVILEGES ON `lowlying`.*", ["ALL PRIVILEGES"]],
+    ["SELECT, DROP, ALTER ON `low%`.*", ["DROP", "ALTER"]],
+    ["TRIGGER ON `lowlyin_`.*", ["TRIGGER"]],
+    ["SELECT, DROP ON `lowlying`.`logbook`", ["DROP"]],
+    ["SUPER ON *.*", ["SUPER"]],
+  ])("that get round the triggers are named: %s", (grant, names) => expect(over(grant)).toEqual(names));
 });
 
 describe("settings of the database server", () => {

@@ -1,10 +1,11 @@
 import { spawn } from "node:child_process";
-import { mkdtempSync, readFileSync, rmSync, statSync } from "node:fs";
+import { mkdtempSync, readFileSync, rmSync, statSync, writeFileSync } from "node:fs";
 import os from "node:os";
 import path from "node:path";
 import { createConnection, type RowDataPacket } from "mysql2/promise";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
 import { settingsFaults } from "~/db/migrate.server";
+import { ownTriggers } from "~/db/rights.server";
 import { openDatabase, runningUrl } from "../../scripts/database.mjs";
 
 // The server that `npm start` runs, in a folder of its own with a long name: paths of sockets have a limit.
@@ -83,7 +84,7 @@ describe("the database of an instance", () => {
   });
 
   it("comes back with its data after it was killed (F02)", async () => {
-    await ask(database.url, "create table lowlying.kept (n int)");
+    await ask(database.ownerUrl, "create table lowlying.kept (n int)");
     await ask(database.url, "insert into lowlying.kept values (7)");
     process.kill(serverPid(), "SIGKILL");
     await expect
@@ -100,4 +101,34 @@ describe("the database of an instance", () => {
     database = await openDatabase({ folder });
     expect(await ask(database.url, "select n from kept")).toEqual([{ n: 7 }]);
   });
+
+  it("gives the application rows and nothing else, in folders of older versions too (security G03)", async () => {
+    const { username, password } = new URL(database.url);
+    // As it was: one account for everything, which made the triggers.
+    const socket = { socketPath: "run/db.sock", user: "root" };
+    const here = process.cwd();
+    process.chdir(folder);
+    const root = await createConnection(socket).finally(() => process.chdir(here));
+    await root.query(`grant all privileges on lowlying.* to '${username}'@'127.0.0.1'`);
+    await root.query(
+      `create definer='${username}'@'127.0.0.1' trigger lowlying.guard before delete on lowlying.kept for each row set @a = 1`,
+    );
+    await root.query(`drop user 'lowlying_owner'@'127.0.0.1'`);
+    await root.end();
+    await database.close();
+    const state = path.join(folder, "database.json");
+    const { ownerPassword: _, ...old } = JSON.parse(readFileSync(state, "utf8"));
+    writeFileSync(state, JSON.stringify(old));
+
+    database = await openDatabase({ folder });
+    expect(new URL(database.url)).toMatchObject({ username, password });
+    for (const statement of ["truncate table kept", "drop trigger guard", "create table mine (n int)"]) {
+      await expect(ask(database.url, statement), statement).rejects.toThrow(/denied/);
+    }
+    const owner = await createConnection({ uri: database.ownerUrl });
+    await ownTriggers(owner);
+    await owner.end();
+    await ask(database.url, "delete from kept");
+    expect(await ask(database.url, "select n from kept")).toEqual([]);
+  }, 60_000);
 });
