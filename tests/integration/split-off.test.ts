@@ -65,6 +65,33 @@ describe("which of two molecules is the ensemble", () => {
   });
 });
 
+describe("which of two configurations is the ensemble", () => {
+  it("is answered once the other one became an ensemble of its own", async () => {
+    const haloform = (sign: 1 | -1, by: number) =>
+      record(`h${by}`, {
+        atoms: [
+          { symbol: "C", at: [by, 0, 0] },
+          { symbol: "H", at: [by, 0, 1.09] },
+          { symbol: "F", at: [by + 1.27, 0, -0.42] },
+          { symbol: "Cl", at: [by - 0.83, 1.44 * sign, -0.55] },
+          { symbol: "Br", at: [by - 0.91, -1.58 * sign, -0.62] },
+        ],
+        bonds: [2, 3, 4, 5].map((k) => [1, k, 1] as const),
+      });
+    const content = haloform(1, 1) + haloform(1, 2) + haloform(-1, 3);
+    const parent = await takenIn(lab.token, [{ name: "hands.sdf", content }]);
+    expect(parent.intake.questions).toMatchObject([{ id: "configuration" }]);
+    const made = await splitOff({ actor, ensembleId: parent.id, frame: 3 });
+    expect((await describeEnsemble(lab.team.id, made.ensembleId)).intake).toMatchObject({
+      accepted: 1,
+      held: 0,
+    });
+    const { intake } = await describeEnsemble(lab.team.id, parent.id);
+    expect(intake).toMatchObject({ accepted: 2, held: 1, questions: [] });
+    expect(await entries(parent.id, "answer")).toMatchObject([{ data: { question: "configuration" } }]);
+  });
+});
+
 describe("held frames of something else", () => {
   it("become an ensemble with their bytes, their energies and their series; both logbooks say so", async () => {
     const parent = await takenIn(lab.token, [{ name: "mix.xyz", content: mixture("own") }], {

@@ -59,7 +59,7 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
           tone={ensemble.remarked > 0 ? "remark" : undefined}
         />
         <KeyFigure
-          label={asks ? "Held for other reasons" : "Held"}
+          label={asks && intake.waiting > 0 ? "Held for other reasons" : "Held"}
           value={formatCount(ensemble.held - (asks ? intake.waiting : 0))}
           tone={ensemble.held - (asks ? intake.waiting : 0) > 0 ? "held" : undefined}
         />

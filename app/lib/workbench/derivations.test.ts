@@ -309,6 +309,11 @@ describe("findings in words", () => {
     expect(intakeFinding(open, { ...quiet, waiting: 397 }).text).toBe(
       "400 frames read: 397 can be accepted and 3 are held for other reasons. Two questions come first; nothing is computed before they are answered.",
     );
+    // No frame waits for the question which configuration it is.
+    const chosen = { ...weighed, accepted: 397, held: 3, openQuestions: 1 };
+    expect(intakeFinding(chosen, quiet).text).toBe(
+      "400 frames read: 397 are accepted already and 3 are held. One question is open; what is accepted is used meanwhile.",
+    );
     const whole = { ...weighed, accepted: 400, remarked: 0, held: 0 };
     expect(intakeFinding(whole, quiet).text).toBe("400 frames read: all are accepted.");
     const unit = { id: "u", code: "energy-from", text: "Which number is the energy?", options: [] };

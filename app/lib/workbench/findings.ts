@@ -273,7 +273,9 @@ export function intakeFinding(
     const parts = [
       waiting > 0 ? `${formatCount(waiting)} can be accepted` : null,
       accepted > 0 ? `${formatCount(accepted)} ${accepted === 1 ? "is" : "are"} accepted already` : null,
-      other > 0 ? `${formatCount(other)} ${other === 1 ? "is" : "are"} held for other reasons` : null,
+      other > 0
+        ? `${formatCount(other)} ${other === 1 ? "is" : "are"} held${waiting > 0 ? " for other reasons" : ""}`
+        : null,
     ].filter((part) => part !== null);
     if (accepted > 0) {
       const open = one ? "One question is" : `${capital(countWord(openQuestions))} questions are`;
