@@ -164,9 +164,10 @@ describe("a table", () => {
     expect(refused.body.detail).not.toContain("State energyUnit");
     const helped = await add(id, shift, { kind: "energy", columns: '[{"column":2,"unit":"kcal/mol"}]' });
     expect([helped.status, helped.body.columns[0].unit]).toEqual([201, "kcal/mol"]);
-    for (const fields of [{ rule: "mean" }, { energyKind: "gibbs" }, { replace: "yes" }] as const) {
+    const wrong: Record<string, string>[] = [{ rule: "mean" }, { energyKind: "gibbs" }, { replace: "yes" }];
+    for (const fields of wrong) {
       const [field, value] = Object.entries(fields)[0] ?? ["", ""];
-      const { status, body } = await add(id, shift, fields as Record<string, string>);
+      const { status, body } = await add(id, shift, fields);
       expect([status, body.errors[0].field]).toEqual([422, field]);
       expect(body.errors[0].message).toMatch(new RegExp(`^Expected "[^;]*; found "${value}"`));
     }

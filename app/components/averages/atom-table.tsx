@@ -50,6 +50,7 @@ export function AtomTable({
   const picked = rows.find((row) => row.one.property.id === chosen)?.one.property.atoms ?? [];
   const merged = rows.filter((row) => (row.one.property.atoms ?? []).length > 1);
   const atoms = rows.reduce((total, row) => total + (row.one.property.atoms ?? []).length, 0);
+  const own = ` at ${formatTemperature(temperatureK)} K${unit ? ` [${unit}]` : ""}`;
   const save = () =>
     saveText(
       `${anchorOf(quantity)}.csv`,
@@ -60,9 +61,11 @@ export function AtomTable({
           ...averaged.temperatures.map(
             (kelvin) => `${formatTemperature(kelvin)} K${unit ? ` [${unit}]` : ""}`,
           ),
-          "uncertainty",
-          "spread",
-          "covered",
+          `uncertainty${own}`,
+          `spread${own}`,
+          `covered at ${formatTemperature(temperatureK)} K`,
+          "level",
+          "weights",
         ],
         rows.map(({ one, name }) => [
           name,
@@ -70,6 +73,8 @@ export function AtomTable({
           one.error?.sd ?? null,
           one.average.spread,
           one.average.covered,
+          weighed.level.name,
+          weighed.weights.kind,
         ]),
       ),
     );

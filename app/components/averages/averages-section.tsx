@@ -1,5 +1,6 @@
 import { useMemo } from "react";
 import { href, useLocation } from "react-router";
+import { FigureFacts } from "~/components/charts/figure-facts";
 import { MaybeLevels } from "~/components/columns/maybe-levels";
 import { ButtonLink } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
@@ -55,7 +56,15 @@ export function AveragesSection({ view }: { view: AveragesView }) {
           <PickColumn />
         </>
       ) : (
-        <Filled view={view} weighed={weighed} error={error} averaged={averaged} />
+        <FigureFacts
+          facts={[
+            { name: "level", value: weighed.level.name },
+            { name: "weights", value: weighed.weights.kind },
+            { name: "sigma", unit: "kcal/mol", value: error.sigma },
+          ]}
+        >
+          <Filled view={view} weighed={weighed} error={error} averaged={averaged} />
+        </FigureFacts>
       )}
     </section>
   );

@@ -3,7 +3,8 @@ import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { fixed } from "~/lib/format";
 import { toCsv } from "~/lib/workbench/tsv";
-import { figureJson, figureSvg, savePng, saveText } from "./export-figure";
+import { type FigureContext, figureJson, figureSvg, savePng, saveText, withFacts } from "./export-figure";
+import { useFigureFacts } from "./figure-facts";
 
 export interface FigureColumn {
   name: string;
@@ -31,6 +32,7 @@ export function ChartFrame({
   fileName,
   note,
   tableBeside = false,
+  ofPopulations = true,
   className = "",
   children,
 }: {
@@ -41,12 +43,23 @@ export function ChartFrame({
   note?: ReactNode;
   /** The page has these numbers in a table of its own, so that readers without script need no second one. */
   tableBeside?: boolean;
+  /** False where neither temperature nor weights bear on it. */
+  ofPopulations?: boolean;
   className?: string;
   children: ReactNode;
 }) {
   const id = useId();
   const figure = useRef<HTMLDivElement>(null);
   const [open, setOpen] = useState(false);
+  const facts = useFigureFacts();
+  const context = (): FigureContext => ({
+    facts: ofPopulations ? facts() : [],
+    note: typeof note === "string" ? note : undefined,
+  });
+  const saveCsv = () => {
+    const table = withFacts(head, data.rows, context().facts);
+    saveText(`${fileName}.csv`, "text/csv", toCsv(table.head, table.rows));
+  };
   const head = data.columns.map((column) => (column.unit ? `${column.name} [${column.unit}]` : column.name));
   return (
     <figure className={`min-w-0 ${className}`} aria-labelledby={id}>
@@ -63,17 +76,14 @@ export function ChartFrame({
           >
             Table<span className="sr-only"> of {title}</span>
           </TextButton>
-          <TextButton
-            className={TOOL}
-            onClick={() => saveText(`${fileName}.csv`, "text/csv", toCsv(head, data.rows))}
-          >
+          <TextButton className={TOOL} onClick={saveCsv}>
             CSV<span className="sr-only"> of {title}</span>
           </TextButton>
           <TextButton
             className={TOOL}
             onClick={() => {
               const svg = figure.current?.querySelector("svg");
-              if (svg) saveText(`${fileName}.svg`, "image/svg+xml", figureSvg(svg, title));
+              if (svg) saveText(`${fileName}.svg`, "image/svg+xml", figureSvg(svg, title, context()));
             }}
           >
             SVG<span className="sr-only"> of {title}</span>
@@ -82,14 +92,16 @@ export function ChartFrame({
             className={TOOL}
             onClick={() => {
               const svg = figure.current?.querySelector("svg");
-              if (svg) void savePng(`${fileName}.png`, svg, title);
+              if (svg) void savePng(`${fileName}.png`, svg, title, context());
             }}
           >
             PNG<span className="sr-only"> of {title}</span>
           </TextButton>
           <TextButton
             className={TOOL}
-            onClick={() => saveText(`${fileName}.json`, "application/json", figureJson(title, data))}
+            onClick={() =>
+              saveText(`${fileName}.json`, "application/json", figureJson(title, data, context()))
+            }
           >
             JSON<span className="sr-only"> of {title}</span>
           </TextButton>

@@ -1,10 +1,11 @@
 import { Download } from "lucide-react";
 import { useMemo, useState } from "react";
-import { saveText } from "~/components/charts/export-figure";
+import { type FigureFact, saveText, withFacts } from "~/components/charts/export-figure";
+import { useFigureFacts } from "~/components/charts/figure-facts";
 import type { Choose } from "~/components/charts/plot";
 import { Button } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
-import { LevelName } from "~/components/ui/level-marker";
+import { BreakableName, LevelName } from "~/components/ui/level-marker";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { PopulationBar } from "~/components/workbench/population-bar";
@@ -17,7 +18,7 @@ import type { Comparison } from "./use-comparison";
 const FIRST_ROWS = 12;
 
 /** A level may be called "DLPNO-CCSD(T)/def2-TZVP//B3LYP-D3/6-31G(d)": its head breaks anywhere rather than widen the page. */
-const LONG_NAMES =
+export const LONG_NAMES =
   "min-w-22 whitespace-normal! [overflow-wrap:anywhere] max-sm:min-w-18 [&_span]:whitespace-normal";
 
 /** More rows than a page carries without stumbling; the CSV has all. */
@@ -43,6 +44,7 @@ export function ComparedTable({
   selected: ReadonlySet<number>;
   onChoose: Choose;
 }) {
+  const facts = useFigureFacts();
   const { level, reference, paired, comparison } = found;
   const [order, setOrder] = useState<Order>("reference");
   const [all, setAll] = useState(false);
@@ -76,7 +78,7 @@ export function ComparedTable({
         <Button
           size="sm"
           icon={<Download aria-hidden="true" />}
-          onClick={() => saveText("levels.csv", "text/csv", csvOf(found, sorted))}
+          onClick={() => saveText("levels.csv", "text/csv", csvOf(found, sorted, facts()))}
         >
           CSV
         </Button>
@@ -100,10 +102,24 @@ export function ComparedTable({
             <Th className="max-sm:hidden" {...head("moves")}>
               Moves
             </Th>
-            <Th unit={`${level.name}, %`} className={`max-xl:hidden ${LONG_NAMES}`}>
+            <Th
+              unit={
+                <>
+                  <BreakableName name={level.name} />, %
+                </>
+              }
+              className={`max-xl:hidden ${LONG_NAMES}`}
+            >
               Population
             </Th>
-            <Th unit={`${reference.name}, %`} className={`max-xl:hidden ${LONG_NAMES}`}>
+            <Th
+              unit={
+                <>
+                  <BreakableName name={reference.name} />, %
+                </>
+              }
+              className={`max-xl:hidden ${LONG_NAMES}`}
+            >
               Population
             </Th>
           </tr>
@@ -198,8 +214,12 @@ function sumOf(lines: readonly Line[]): string {
   );
 }
 
-function csvOf({ level, reference }: Comparison, lines: readonly Line[]): string {
-  return toCsv(
+function csvOf(
+  { level, reference }: Comparison,
+  lines: readonly Line[],
+  facts: readonly FigureFact[],
+): string {
+  const table = withFacts(
     [
       "conformer",
       "frame",
@@ -208,8 +228,8 @@ function csvOf({ level, reference }: Comparison, lines: readonly Line[]): string
       "deviation [kcal/mol]",
       `rank at ${level.name}`,
       `rank at ${reference.name}`,
-      `population at ${level.name}`,
-      `population at ${reference.name}`,
+      `population at ${level.name} [fraction]`,
+      `population at ${reference.name} [fraction]`,
     ],
     lines.map(({ point, atLevel, atReference }) => [
       point.name,
@@ -222,5 +242,7 @@ function csvOf({ level, reference }: Comparison, lines: readonly Line[]): string
       point.levelPopulation,
       point.referencePopulation,
     ]),
+    facts,
   );
+  return toCsv(table.head, table.rows);
 }

@@ -72,12 +72,15 @@ export function ErrorAgainstEnergy({
           x={(p) => p.reference}
           y={(p) => p.deviation}
           selected={selected}
+          keepClear={[{ y: comparison.rmsd, text: rmsdWords(comparison.rmsd) }]}
           named={farthest.map((point) => ({ point, text: point.name }))}
         />
       </Plot>
     </ChartFrame>
   );
 }
+
+const rmsdWords = (rmsd: number) => `RMSD ${formatEnergy(rmsd)}`;
 
 function ZeroLayer({ rmsd }: { rmsd: number }) {
   const plot = usePlot();
@@ -91,7 +94,7 @@ function ZeroLayer({ rmsd }: { rmsd: number }) {
       {rule(rmsd, "2 3")}
       {rule(-rmsd, "2 3")}
       <ChartText x={plot.right - 4} y={plot.y(rmsd) - 5} end halo>
-        RMSD {formatEnergy(rmsd)}
+        {rmsdWords(rmsd)}
       </ChartText>
     </g>
   );

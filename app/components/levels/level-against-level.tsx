@@ -1,16 +1,10 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, type Choose, Plot, usePlot } from "~/components/charts/plot";
 import { formatEnergy, plural } from "~/lib/format";
+import { ZERO_WORDS } from "./comparison-facts";
 import { PairLayer } from "./pair-layer";
 import { drawnPoints, energyTop, type PairPoint, percent, pointWords } from "./pair-points";
 import type { Comparison } from "./use-comparison";
-
-const ZERO_WORDS = {
-  "least-squares": "mean offset",
-  median: "median offset",
-  "own-minimum": "difference of the lowest",
-  common: "difference at the common conformer",
-} as const;
 
 /** Relative energy at one level against the other, with the line of equal energies and the level's error about it. */
 export function LevelAgainstLevel({

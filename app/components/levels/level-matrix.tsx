@@ -8,6 +8,7 @@ import { useWorkbench } from "~/components/workbench/workbench-context";
 import { ABSENT, fixed } from "~/lib/format";
 import { compareLevels } from "~/lib/levels/compare";
 import { type Member, pairLevels } from "~/lib/levels/level-energies";
+import { LONG_NAMES } from "./compared-table";
 import type { LevelData } from "./use-comparison";
 
 const MEASURES = {
@@ -58,13 +59,13 @@ export function LevelMatrix({
           }))}
         />
       </BlockHead>
-      <div className="overflow-x-auto">
+      <div className="scroll-sign overflow-x-auto">
         <Table aria-labelledby="level-matrix">
           <thead>
             <tr>
               <Th unit={unit}>Level, reference across</Th>
               {levels.map((reference) => (
-                <Th key={reference.id} align="right">
+                <Th key={reference.id} align="right" className={LONG_NAMES}>
                   <LevelName name={reference.name} ordinal={reference.ordinal} />
                 </Th>
               ))}
@@ -73,7 +74,7 @@ export function LevelMatrix({
           <tbody>
             {levels.map((level, r) => (
               <Tr key={level.id}>
-                <Td>
+                <Td wrap className={LONG_NAMES}>
                   <LevelName name={level.name} ordinal={level.ordinal} />
                 </Td>
                 {levels.map((reference, c) => {

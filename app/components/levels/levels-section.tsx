@@ -1,5 +1,6 @@
 import { useDeferredValue, useMemo } from "react";
 import { href, useLocation } from "react-router";
+import { FigureFacts } from "~/components/charts/figure-facts";
 import type { Choose } from "~/components/charts/plot";
 import { MaybeLevels } from "~/components/columns/maybe-levels";
 import { ButtonLink } from "~/components/ui/button";
@@ -15,6 +16,7 @@ import type { LevelEnergiesView } from "~/lib/levels/level-energies";
 import { comparisonStory } from "~/lib/levels/story";
 import { AgreementTable, MOST_RESAMPLED } from "./agreement-table";
 import { ComparedTable } from "./compared-table";
+import { comparisonFacts } from "./comparison-facts";
 import { ErrorAgainstEnergy } from "./error-against-energy";
 import { LevelAgainstLevel } from "./level-against-level";
 import { LevelMatrix } from "./level-matrix";
@@ -80,7 +82,8 @@ function TooFew({ levels }: { levels: readonly LevelData[] }) {
 function Compared({ levels }: { levels: readonly LevelData[] }) {
   const { state, temperatureK } = useWorkbench();
   const { level, reference } = chooseLevels(levels, state.compare);
-  const { members, among, weightsReason } = useMembers(reference);
+  const taken = useMembers(reference);
+  const { members, among, weightsReason } = taken;
   const found = useComparison(level, reference, members);
   if (!level || !reference) return null;
   if (found === null) {
@@ -109,7 +112,9 @@ function Compared({ levels }: { levels: readonly LevelData[] }) {
       <p className="mt-3 max-w-[46rem] text-xs text-ink-3">{weightsReason}</p>
       <TemperatureNote levels={[level, reference]} temperaturesK={[temperatureK]} />
       <MaybeLevels className="mt-2 max-w-[46rem] text-xs text-ink-2" />
-      <Figures found={found} />
+      <FigureFacts facts={comparisonFacts(found, taken, temperatureK)}>
+        <Figures found={found} />
+      </FigureFacts>
       {levels.length > 2 ? <LevelMatrix levels={levels} members={members} /> : null}
     </>
   );

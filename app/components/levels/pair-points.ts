@@ -65,7 +65,7 @@ export function energyTop(values: readonly number[], needed: number): number {
 }
 
 /** Width of a letter of 12 px. */
-const LETTER_PX = 7;
+export const LETTER_PX = 7;
 
 /** Labels that do not lie on each other, in pixels; of two that would, the first stays. */
 export function apart<P extends { x: number; y: number; text: string }>(labels: readonly P[]): P[] {

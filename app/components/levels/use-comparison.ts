@@ -37,7 +37,8 @@ export interface Members {
   members: readonly Member[];
   /** What is compared: the sift's conformers, or all accepted frames. */
   among: "conformers" | "accepted";
-  /** Which weight, and why. */
+  /** What each counts by, in a word, and why. */
+  weights: "copies" | "degeneracy" | "each once";
   weightsReason: string;
 }
 
@@ -50,6 +51,7 @@ export function useMembers(reference: LevelView | null): Members {
       const weights = chooseWeights(result.kept, reference?.energyKind ?? "electronic", state.weights);
       return {
         among: "conformers",
+        weights: weights.kind,
         weightsReason: weights.reason,
         members: result.kept.map((conformer, k) => ({
           frame: conformer.frame,
@@ -65,6 +67,7 @@ export function useMembers(reference: LevelView | null): Members {
     }
     return {
       among: "accepted",
+      weights: "each once",
       members,
       weightsReason:
         "Every accepted frame counts once: duplicates are not sifted out and weigh as often as found.",

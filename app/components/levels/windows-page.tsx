@@ -1,7 +1,7 @@
 import { Download } from "lucide-react";
 import { useMemo } from "react";
 import { Form, href, useSubmit } from "react-router";
-import { saveText } from "~/components/charts/export-figure";
+import { saveText, withFacts } from "~/components/charts/export-figure";
 import { pageClass } from "~/components/layout/app-shell";
 import { Button } from "~/components/ui/button";
 import { TextField } from "~/components/ui/field";
@@ -180,7 +180,7 @@ function Molecules({ data, pooled }: { data: WindowsPageData; pooled: PooledWind
         <Button
           size="sm"
           icon={<Download aria-hidden="true" />}
-          onClick={() => saveText("windows.csv", "text/csv", csvOf(rows))}
+          onClick={() => saveText("windows.csv", "text/csv", csvOf(rows, data))}
         >
           CSV
         </Button>
@@ -268,8 +268,9 @@ function Left({ data }: { data: WindowsPageData }) {
 
 function csvOf(
   rows: { molecule: SeriesLevels["molecules"][number]; each: PooledWindow["each"][number] }[],
+  { found, settings }: WindowsPageData,
 ): string {
-  return toCsv(
+  const { head, rows: cells } = withFacts(
     [
       "ensemble",
       "id",
@@ -288,5 +289,12 @@ function csvOf(
       100 * each.kept,
       each.keptCount,
     ]),
+    [
+      { name: "share to keep", unit: "%", value: 100 * settings.share },
+      { name: "temperature", unit: "K", value: settings.temperatureK },
+      { name: "level", value: found.level ?? "" },
+      { name: "reference", value: found.reference ?? "" },
+    ],
   );
+  return toCsv(head, cells);
 }

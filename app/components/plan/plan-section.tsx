@@ -1,5 +1,6 @@
 import { useMemo } from "react";
 import { href } from "react-router";
+import { FigureFacts } from "~/components/charts/figure-facts";
 import { LevelsTabs } from "~/components/levels/levels-tabs";
 import { type LevelData, useLevelData, useMembers } from "~/components/levels/use-comparison";
 import { Badge } from "~/components/ui/badge";
@@ -164,7 +165,14 @@ function Planned({
         readOnly={readOnly}
         onChange={change}
       />
-      <PlanCharts set={set} figures={figures} startName={start} ordinal={startLevel?.ordinal ?? 1} />
+      <FigureFacts
+        facts={[
+          { name: "temperature", unit: "K", value: plan.temperatureK },
+          { name: "level", value: start },
+        ]}
+      >
+        <PlanCharts set={set} figures={figures} startName={start} ordinal={startLevel?.ordinal ?? 1} />
+      </FigureFacts>
       <AlternativesTable
         set={set}
         startName={start}

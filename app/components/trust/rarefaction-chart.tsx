@@ -15,6 +15,7 @@ export function RarefactionChart({ found, coverage }: { found: readonly number[]
   const top = Math.max(distinct, richness.estimate, Math.min(richness.high ?? 0, 3 * distinct));
   return (
     <ChartFrame
+      ofPopulations={false}
       title="How complete the sampling is"
       fileName="rarefaction"
       note="The share of the search's own hits, not of the population; a lower bound, and everything hangs on the RMSD tolerance. Hits of one search are rarely independent."

@@ -1,4 +1,5 @@
-import { saveText } from "~/components/charts/export-figure";
+import { saveText, withFacts } from "~/components/charts/export-figure";
+import { useFigureFacts } from "~/components/charts/figure-facts";
 import { Provenance } from "~/components/ui/provenance";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
@@ -24,13 +25,17 @@ function Block({
   note?: string;
   children: React.ReactNode;
 }) {
+  const facts = useFigureFacts();
   return (
     <section className="min-w-0">
       <div className="mb-2 flex items-baseline justify-between gap-3">
         <h3 className="text-sm font-semibold">{title}</h3>
         <TextButton
           className="inline-flex min-h-6 items-center text-xs no-underline! hover:underline! print:hidden pointer-coarse:min-h-11"
-          onClick={() => saveText(`${fileName}.csv`, "text/csv", toCsv(head, rows))}
+          onClick={() => {
+            const table = withFacts(head, rows, facts());
+            saveText(`${fileName}.csv`, "text/csv", toCsv(table.head, table.rows));
+          }}
         >
           CSV<span className="sr-only"> of {title}</span>
         </TextButton>

@@ -1,3 +1,4 @@
+import { Fragment } from "react";
 import type { LevelView } from "~/lib/views";
 import { SelectField } from "./select-field";
 
@@ -54,12 +55,24 @@ export function levelColour(ordinal: number): string {
   return `var(--color-level-${((ordinal - 1) % 6) + 1})`;
 }
 
+/** A name that may go on in the next line behind an underscore or a slash, rather than within a word. */
+export function BreakableName({ name }: { name: string }) {
+  return name.split(/(?<=[_/])/).map((part, k) => (
+    <Fragment key={k}>
+      {k > 0 ? <wbr /> : null}
+      {part}
+    </Fragment>
+  ));
+}
+
 /** Marker and name of a level. */
 export function LevelName({ name, ordinal }: { name: string; ordinal: number }) {
   return (
     <span className="inline-flex items-center gap-2 whitespace-nowrap">
       <LevelMarker ordinal={ordinal} />
-      {name}
+      <span>
+        <BreakableName name={name} />
+      </span>
     </span>
   );
 }

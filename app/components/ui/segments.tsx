@@ -54,7 +54,8 @@ export function Segments<V extends string>({
               onChange={() => onChange?.(option.value)}
               className="absolute inset-0 size-full cursor-pointer opacity-0"
             />
-            {option.label}
+            {/* One box: the parts of a label such as r with a raised figure stand in a line. */}
+            <span>{option.label}</span>
           </label>
         ))}
       </span>

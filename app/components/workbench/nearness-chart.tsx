@@ -30,6 +30,7 @@ export function NearnessChart({
   const filled = bins.filter((bin) => bin.merged + bin.apart > 0);
   return (
     <ChartFrame
+      ofPopulations={false}
       title="How near the frames lie"
       fileName="nearest-rmsd"
       note={`${gap} Filled: frames that were merged, by the RMSD to the conformer they repeat; outlined: kept conformers, by the RMSD to the nearest other one.${closed ? "" : " The last bar holds everything farther away."}`}

@@ -50,6 +50,7 @@ export function PlateauChart({
   return (
     <div className={stale ? "opacity-50 transition-opacity" : "transition-opacity"} aria-busy={stale}>
       <ChartFrame
+        ofPopulations={false}
         title={TITLE}
         fileName="count-against-tolerance"
         note={note}

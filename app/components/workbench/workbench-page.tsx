@@ -1,6 +1,7 @@
 import { ArrowRight, Link2 } from "lucide-react";
 import { type ReactNode, useEffect, useMemo, useRef } from "react";
 import { href, useLocation, useNavigation, useRevalidator } from "react-router";
+import { FigureFacts } from "~/components/charts/figure-facts";
 import { AppShell, pageClass } from "~/components/layout/app-shell";
 import { OutsideTorsions, OutsideViewPanel } from "~/components/outside/outside-view";
 import { Button, ButtonLink } from "~/components/ui/button";
@@ -32,6 +33,22 @@ export interface WorkbenchData {
   intake: IntakeView;
 }
 
+/** What the figures of every section belong to, unless the section says otherwise. */
+function SharedFacts({ children }: { children: ReactNode }) {
+  const { temperatureK, level, populations } = useWorkbench();
+  return (
+    <FigureFacts
+      facts={[
+        { name: "temperature", unit: "K", value: temperatureK },
+        { name: "level", value: level?.name ?? null },
+        { name: "weights", value: populations?.weights.kind ?? null },
+      ]}
+    >
+      {children}
+    </FigureFacts>
+  );
+}
+
 /** Header, rail and view around the sections; one page, whatever section is open. */
 export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchData & { children: ReactNode }) {
   const { pathname, search } = useLocation();
@@ -41,9 +58,11 @@ export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchDat
     <WorkbenchProvider ensemble={ensemble} sift={followed} section={section} first={firstFrame(intake)}>
       <DecisionsProvider ensembleId={ensemble.id}>
         <BesideField value={search}>
-          <Frame section={section} intake={intake}>
-            {children}
-          </Frame>
+          <SharedFacts>
+            <Frame section={section} intake={intake}>
+              {children}
+            </Frame>
+          </SharedFacts>
         </BesideField>
       </DecisionsProvider>
     </WorkbenchProvider>
