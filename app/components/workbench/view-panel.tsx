@@ -180,7 +180,7 @@ function hiddenWords(ensemble: EnsembleView, conformers: ViewerProps["conformers
   const drawn = conformers.filter(({ selected, tone }) => selected && tone !== "held").slice(0, MAX_COLOURED);
   const [first] = drawn;
   if (first === undefined || drawn.length < 2) return null;
-  const named = drawn.map(({ name = "", positions }) => ({ name, positions }));
+  const named = drawn.map(({ name = "", positions }) => ({ name, positions: Float64Array.from(positions) }));
   const found = coinciding(makeGraph(Uint8Array.from(ensemble.elements), ensemble.bonds), named);
   if (found.length === 0) return null;
   const farthest = found.reduce((most, { rmsd }) => Math.max(most, rmsd), 0);
