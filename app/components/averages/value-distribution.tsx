@@ -67,7 +67,7 @@ export function ValueDistribution({
       onChoose={onChoose}
     >
       {other !== null && other.value >= (histogram.bins[0]?.from ?? 0) ? (
-        <Mark value={other.value} top={16} end={other.value <= (average.value ?? 0)} dashed>
+        <Mark value={other.value} top={16} dashed>
           {`${RULE_WORDS[other.rule].name} would be ${fixed(other.value, digits)}`}
         </Mark>
       ) : null}
@@ -134,28 +134,25 @@ function Range({ from, to }: { from: number; to: number }) {
 }
 
 /**
- * A line at a value with its words beside it.
+ * A line at a value with its words beside it, on the side where there is more room.
  *
  * @param props.top px below the top of the drawing
- * @param props.end the words stand left of the line; by default where the line is in the right half
  */
 function Mark({
   value,
   top,
-  end,
   dashed = false,
   children,
 }: {
   value: number;
   top: number;
-  end?: boolean;
   dashed?: boolean;
   children: ReactNode;
 }) {
   const plot = usePlot();
   if (!plot) return null;
   const x = Math.min(plot.right, Math.max(plot.left, plot.x(value)));
-  const left = end ?? plot.x(value) > (plot.left + plot.right) / 2;
+  const left = plot.x(value) > (plot.left + plot.right) / 2;
   return (
     <g>
       <path

@@ -20,7 +20,7 @@ describe("what the numbers of a figure belong to", () => {
 
   it("stands under the title, in every row of the CSV and beside the rows of the JSON", () => {
     expect(factsLine(facts).replaceAll("\u00a0", " ")).toBe(
-      "temperature 298.15 K; level MMFF94; standard deviation about the zero 0.527864 kcal/mol",
+      "temperature 298.15 K; level MMFF94; standard deviation about the zero 0.53 kcal/mol",
     );
     expect(withFacts(["p"], [[0.25], [null]], facts.slice(0, 2))).toEqual({
       head: ["p", "temperature [K]", "level"],

@@ -23,7 +23,9 @@ const keyOf = ({ name, unit }: { name: string; unit?: string }) => (unit ? `${na
 export function factsLine(facts: readonly FigureFact[]): string {
   return facts
     .map(({ name, unit, value }) => {
-      const text = typeof value === "number" ? String(Number(value.toPrecision(6))) : value;
+      const number = (found: number) =>
+        unit === "kcal/mol" ? found.toFixed(2) : String(Number(found.toPrecision(6)));
+      const text = typeof value === "number" ? number(value) : value;
       return `${name} ${text}${unit ? `\u00a0${unit}` : ""}`;
     })
     .join("; ");
