@@ -6,7 +6,7 @@ import { parseArgs } from "node:util";
 import { runningUrl } from "./database.mjs";
 import { addressOf } from "./lib/address.mjs";
 import { dataFolder, loadSettings } from "./lib/prepare.mjs";
-import { StartError } from "./lib/processes.mjs";
+import { inWords, StartError } from "./lib/processes.mjs";
 
 const USAGE =
   "npm run -s link -- --ensemble ID [--days N] [--for TEXT] [--contact TEXT] [--sources] [--logbook]\n" +
@@ -69,7 +69,7 @@ main().then(
   // Threads of a computation would keep the process for a minute.
   () => process.exit(0),
   (error) => {
-    console.error(error instanceof StartError || error.name === "DomainError" ? error.message : error);
+    console.error(inWords(error));
     process.exit(1);
   },
 );

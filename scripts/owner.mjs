@@ -4,7 +4,7 @@
 import { parseArgs } from "node:util";
 import { runningUrl } from "./database.mjs";
 import { dataFolder, loadSettings } from "./lib/prepare.mjs";
-import { StartError } from "./lib/processes.mjs";
+import { inWords, StartError } from "./lib/processes.mjs";
 
 const USAGE = "npm run -s owner -- --email ADDRESS --team NAME";
 
@@ -29,6 +29,7 @@ async function main() {
       "No database runs here. Start the application first (npm start), or set DATABASE_URL.",
     );
   }
+  process.env.LOG_LEVEL ||= "silent";
   const { tsImport } = await import("tsx/esm/api");
   const { makeFirstOwnerOnce } = await tsImport(
     "../app/services/people/first-owner.server.ts",
@@ -38,6 +39,6 @@ async function main() {
 }
 
 main().catch((error) => {
-  console.error(error instanceof StartError || error.name === "DomainError" ? error.message : error);
+  console.error(inWords(error));
   process.exit(1);
 });

@@ -1,10 +1,11 @@
 // `npm run -s token -- --email ADDRESS [--team NAME|ID] [--scope full|read|add] [--days N] [--name TEXT]`
-// Prints a new API token of that user and nothing else. Uses the database of the running instance: DATABASE_URL, or
+// Prints a new API token of that user and nothing else: with all that the user's role allows, ending after 30 days, unless
+// said otherwise. Uses the database of the running instance: DATABASE_URL, or
 // the server of .data, which `npm start` runs.
 import { parseArgs } from "node:util";
 import { runningUrl } from "./database.mjs";
 import { dataFolder, loadSettings } from "./lib/prepare.mjs";
-import { StartError } from "./lib/processes.mjs";
+import { inWords, StartError } from "./lib/processes.mjs";
 
 const USAGE =
   "npm run -s token -- --email ADDRESS [--team NAME or ID] [--scope full, read or add] [--days N] [--name TEXT]";
@@ -16,7 +17,7 @@ function readArguments() {
       options: {
         email: { type: "string" },
         team: { type: "string" },
-        scope: { type: "string", default: "full" },
+        scope: { type: "string" },
         days: { type: "string" },
         name: { type: "string", default: "made on the command line" },
       },
@@ -26,13 +27,13 @@ function readArguments() {
   }
   const { email, scope, days } = values;
   if (!email) throw new StartError(`Say whose token: --email ADDRESS\n${USAGE}`);
-  if (!["full", "read", "add"].includes(scope)) {
+  if (scope !== undefined && !["full", "read", "add"].includes(scope)) {
     throw new StartError(`--scope is one of full, read, add; "${scope}" is none of them.`);
   }
-  if (days !== undefined && !(/^\d{1,4}$/.test(days) && Number(days) > 0)) {
-    throw new StartError(`--days is a whole number from 1 to 9999; "${days}" is none.`);
+  if (days !== undefined && !(/^\d{1,3}$/.test(days) && Number(days) > 0 && Number(days) <= 366)) {
+    throw new StartError(`--days is a whole number from 1 to 366; "${days}" is none.`);
   }
-  return { ...values, name: values.name.slice(0, 120), days: days === undefined ? null : Number(days) };
+  return { ...values, name: values.name.slice(0, 120), days: days === undefined ? undefined : Number(days) };
 }
 
 async function main() {
@@ -44,12 +45,13 @@ async function main() {
       "No database runs here. Start the application first (npm start), or set DATABASE_URL.",
     );
   }
+  process.env.LOG_LEVEL ||= "silent";
   const { tsImport } = await import("tsx/esm/api");
   const { makeTokenOnce } = await tsImport("../app/services/auth/make-token-once.server.ts", import.meta.url);
   console.log(await makeTokenOnce(options));
 }
 
 main().catch((error) => {
-  console.error(error instanceof StartError || error.name === "DomainError" ? error.message : error);
+  console.error(inWords(error));
   process.exit(1);
 });

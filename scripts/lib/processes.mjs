@@ -6,6 +6,12 @@ import path from "node:path";
 /** Something that the person at the terminal can act on: printed without a stack. */
 export class StartError extends Error {}
 
+const EXPECTED = new Set(["DomainError", "EnvError", "DatabaseSettingsError"]);
+
+/** What a command prints of a failure: its words where it has some, everything where nobody expected it. */
+export const inWords = (error) =>
+  error instanceof StartError || EXPECTED.has(error.name) ? error.message : error;
+
 export const ROOT = path.resolve(import.meta.dirname, "../..");
 
 /** Full path of a program, or null. Looks where Debian keeps servers too. */

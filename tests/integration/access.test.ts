@@ -2,7 +2,7 @@ import { and, eq } from "drizzle-orm";
 import { beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { newId } from "~/db/new-id.server";
-import { apiTokens, members, users } from "~/db/schema.server";
+import { apiTokens, logbook, members, users } from "~/db/schema.server";
 import { DomainError } from "~/lib/errors";
 import {
   type Actor,
@@ -296,14 +296,33 @@ describe("API tokens", () => {
       { teamId: first.id, userId: user.id, role: "reader", createdAt: new Date("2026-01-01") },
     ]);
     const make = async (team?: string) => {
-      const made = await makeTokenByEmail({ email: user.email, team, scope: "full", days: null, name: "n" });
+      const made = await makeTokenByEmail({ email: user.email, team, name: "n" });
+      // None is without an end (D07).
+      expect(Math.round((made.endsAt.getTime() - Date.now()) / 86_400_000)).toBe(30);
       return (await findToken(made.token))?.teamId;
     };
     expect(await make()).toBe(first.id);
     expect(await make("Second team")).toBe(second.id);
     expect(await make(second.id)).toBe(second.id);
     await expect(make("Nowhere")).rejects.toThrow(/not in a team "Nowhere"/);
-    const nobody = { email: "nobody@lab.example", scope: "full", days: null, name: "n" } as const;
+    const nobody = { email: "nobody@lab.example", name: "n" };
     await expect(makeTokenByEmail(nobody)).rejects.toThrow(/No user/);
+  });
+
+  it("of the command line may no more than their user's role, and stand in the logbook", async () => {
+    const team = await makeTeam();
+    const scopeOf = async (role: "reader" | "analyst", scope?: "full" | "read" | "add") => {
+      const { email } = await makeMember(team.id, role);
+      const made = await makeTokenByEmail({ email, scope, days: 2, name: "job" });
+      return (await findToken(made.token))?.scope;
+    };
+    expect(await scopeOf("reader")).toBe("read");
+    expect(await scopeOf("analyst")).toBe("full");
+    expect(await scopeOf("analyst", "add")).toBe("add");
+    for (const scope of ["full", "add"] as const) {
+      await expect(scopeOf("reader", scope)).rejects.toThrow(/may only read/);
+    }
+    const entries = await db.select().from(logbook).where(eq(logbook.teamId, team.id));
+    expect(entries.map(({ type }) => type)).toEqual(["token-made", "token-made", "token-made"]);
   });
 });

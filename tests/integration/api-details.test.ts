@@ -276,6 +276,13 @@ describe("requests", () => {
     });
   });
 
+  it("with an option of the address given twice are refused by its name", async () => {
+    const answer = await call("/api/v1/ensembles?page=1&page=2&other=1&other=2", { token });
+    expect(answer.status).toBe(422);
+    const { errors } = await answer.json();
+    expect(errors).toEqual([{ field: "page", message: expect.stringContaining("more than once") }]);
+  });
+
   it("that are wrong hear nothing of the validator", async () => {
     const taken = await takenIn(token, file2("wrong", ["-1.55", "-1.45"]), fields);
     const sift = await sifted(token, taken.id, { level: "A" });

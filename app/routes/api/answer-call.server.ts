@@ -68,9 +68,16 @@ export function check<Schema extends z.ZodType>(
   return parsed.data;
 }
 
-/** The options of an address; unknown ones are passed over, of a repeated one the last counts. */
-export function readQuery<Schema extends z.ZodType>(url: URL, schema: Schema): z.infer<Schema> {
-  return check(schema, Object.fromEntries(url.searchParams), "An option of the address is not right");
+/** The options of an address, each once; unknown ones are passed over. */
+export function readQuery<Schema extends z.ZodObject>(url: URL, schema: Schema): z.infer<Schema> {
+  const title = "An option of the address is not right";
+  const faults = Object.keys(schema.shape)
+    .filter((field) => url.searchParams.getAll(field).length > 1)
+    .map((field) => ({ field, message: `"${field}" stands in the address more than once; give it once.` }));
+  if (faults.length > 0) {
+    throw new DomainError("invalid", title, faults.map(({ message }) => message).join(" "), { faults });
+  }
+  return check(schema, Object.fromEntries(url.searchParams), title);
 }
 
 /** Bodies are taken as they are: a packed one would only seem to be broken. */

@@ -69,7 +69,7 @@ export async function action({ request, params, context }: Route.ActionArgs) {
           secret: made.token,
           name: token.data.name,
           scope: token.data.scope,
-          endsAt: made.endsAt?.toISOString() ?? null,
+          endsAt: made.endsAt.toISOString(),
         },
       } satisfies TokenAnswer;
     } catch (error) {

@@ -1,10 +1,11 @@
 import { setTimeout as pause } from "node:timers/promises";
 import { and, asc, eq, isNull } from "drizzle-orm";
-import { closeDatabase, db } from "../../db/client.server.ts";
+import { db } from "../../db/client.server.ts";
 import { isId } from "../../db/new-id.server.ts";
 import { columns, editions, ensembles, links, teams } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { STANDARD_TEMPERATURE_K } from "../../lib/units.ts";
+import { onCommandLine } from "../command-line.server.ts";
 import { freezeFor } from "../editions/freeze-edition.server.ts";
 import { workerBundleExists } from "../jobs/pool.server.ts";
 import { startJobs } from "../jobs/run-jobs.server.ts";
@@ -101,7 +102,7 @@ export async function linkOnce(options: {
   sources: boolean;
   logbook: boolean;
 }): Promise<string> {
-  try {
+  return onCommandLine(async () => {
     const { linkDays, ...at } = await findTarget(options.ensembleId);
     // Said before an edition is frozen for nothing.
     needDays(options.days, linkDays);
@@ -127,9 +128,7 @@ export async function linkOnce(options: {
       },
     );
     return secret;
-  } finally {
-    await closeDatabase();
-  }
+  });
 }
 
 /**
@@ -139,7 +138,7 @@ export async function linkOnce(options: {
  * @returns true; false where it had ended before
  */
 export async function endOnce(address: string): Promise<boolean> {
-  try {
+  return onCommandLine(async () => {
     const secret = /([a-z2-7]{32})\/?$/.exec(address.trim())?.[1] ?? "";
     const rows = isLinkSecret(secret)
       ? await db
@@ -162,7 +161,5 @@ export async function endOnce(address: string): Promise<boolean> {
     if (row.revokedAt !== null || row.endsAt <= new Date()) return false;
     await endLinkFor({ ...row, ...NOBODY });
     return true;
-  } finally {
-    await closeDatabase();
-  }
+  });
 }

@@ -1,9 +1,10 @@
-import { closeDatabase, inTransaction } from "../../db/client.server.ts";
+import { inTransaction } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { invitations, teams } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { newSecret, secretSha } from "../auth/secret.server.ts";
+import { onCommandLine } from "../command-line.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { INVITATION_DAYS, invitationSchema } from "./people-fields.ts";
 
@@ -52,10 +53,6 @@ export async function makeFirstOwner(options: { email: string; team: string; now
 }
 
 /** For a process that makes one and ends: `scripts/owner.mjs`. */
-export async function makeFirstOwnerOnce(options: { email: string; team: string }): Promise<string> {
-  try {
-    return await makeFirstOwner(options);
-  } finally {
-    await closeDatabase();
-  }
+export function makeFirstOwnerOnce(options: { email: string; team: string }): Promise<string> {
+  return onCommandLine(() => makeFirstOwner(options));
 }

@@ -1,7 +1,7 @@
 import { z } from "zod";
 import { db } from "../../db/client.server.ts";
 import { type Actor, accessTeam } from "../auth/access.server.ts";
-import { makeToken, type NewToken } from "../auth/make-token.server.ts";
+import { makeToken, type NewToken, TOKEN_DAYS } from "../auth/make-token.server.ts";
 import { forbidden } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { tellOfToken } from "./tell-of-token.server.ts";
@@ -9,7 +9,11 @@ import { tellOfToken } from "./tell-of-token.server.ts";
 export const newTokenSchema = z.strictObject({
   name: z.string().trim().min(1, "Say what the token is for.").max(120),
   scope: z.enum(["full", "read", "add"]),
-  days: z.coerce.number().int().min(1, "At least one day.").max(366, "At most 366 days."),
+  days: z.coerce
+    .number()
+    .int()
+    .min(1, "At least one day.")
+    .max(TOKEN_DAYS.most, `At most ${TOKEN_DAYS.most} days.`),
 });
 
 /** Makes a token for oneself; a reader may make one that reads. The secret is in the answer and nowhere else. */
@@ -32,7 +36,7 @@ export async function createToken(options: {
       prefix: made.prefix,
       name: asked.name,
       scope: asked.scope,
-      endsAt: made.endsAt?.toISOString() ?? null,
+      endsAt: made.endsAt.toISOString(),
     },
   });
   return made;
