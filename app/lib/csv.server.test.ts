@@ -41,6 +41,19 @@ describe("a table", () => {
     expect(readAtom("H12")).toMatchObject({ atom: 12, element: 1 });
   });
 
+  it("proposes hartree for energies that come close to the isolated atoms, as intake does (row E07)", () => {
+    const answers = { ...NO_ANSWERS, kind: "energy" as const, level: "HF" };
+    const optionsOf = (text: string) =>
+      planTable(read(text), METHANE, answers)
+        .questions.find(({ code }) => code === "energy-unit")
+        ?.options.map(({ id, proposed }) => [id, proposed === true]);
+    const hartree = optionsOf("frame,total\n1,-40.1\n2,-40.09\n3,-40.08\n");
+    expect(hartree?.filter(([, proposed]) => proposed)).toEqual([["hartree", true]]);
+    expect(hartree).toHaveLength(4);
+    const relative = optionsOf("frame,total\n1,0\n2,1.5\n3,2.5\n");
+    expect(relative?.some(([, proposed]) => proposed)).toBe(false);
+  });
+
   it("without rows is refused for that", () => {
     const table = read("frame,a [Å]\n");
     expect(() => planTable(table, METHANE, NO_ANSWERS)).toThrow(/no rows below its header/);

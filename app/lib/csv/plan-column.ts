@@ -1,6 +1,7 @@
 import { initialRule, ruleAgainstUnit } from "../averages/rule.ts";
 import { symbolOf } from "../chem/elements.ts";
 import type { ColumnData } from "../column-data.ts";
+import { unitByAtoms } from "../intake/energy-unit-finding.ts";
 import { IntakeRejection } from "../intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
 import { hasSteeringCharacters, quoteFound } from "../text/escape.ts";
@@ -287,8 +288,11 @@ function settleEnergy(
     });
     return;
   }
-  const reason = `The header "${quoteFound(draft.header)}" names no unit.`;
-  const spread = spreadOf(draft.raw);
+  const range = rangeOf(draft.raw);
+  const proposed = range === null ? null : unitByAtoms(range, context.elements);
+  const fits =
+    proposed === null ? "" : ` The values come close to the sum of the isolated atoms in ${proposed}.`;
+  const reason = `The header "${quoteFound(draft.header)}" names no unit.${fits}`;
   draft.questions.push({
     id: "energyUnit",
     code: "energy-unit",
@@ -297,24 +301,24 @@ function settleEnergy(
     options: UNITS_ASKED.map((id) => ({
       id,
       text: id,
-      spreadKcal: spread === null ? null : spread * kcalPer(id),
+      spreadKcal: range === null || draft.raw.count < 2 ? null : (range.max - range.min) * kcalPer(id),
+      ...(id === proposed ? { proposed: true } : {}),
     })),
   });
 }
 
 const UNITS_ASKED = ["kcal/mol", "kJ/mol", "eV", "hartree"] as const;
 
-/** From the lowest to the highest number of a column, as written; null with fewer than two. */
-function spreadOf(raw: RawColumn): number | null {
-  if (raw.count < 2) return null;
+/** Lowest and highest number of a column, as written; null without any. */
+function rangeOf(raw: RawColumn): { min: number; max: number } | null {
   const { values, present } = raw;
-  let [low, high] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY];
+  let [min, max] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY];
   for (let k = 0; k < values.length; k++) {
     if (present[k] !== 1) continue;
-    low = Math.min(low, values[k]!);
-    high = Math.max(high, values[k]!);
+    min = Math.min(min, values[k]!);
+    max = Math.max(max, values[k]!);
   }
-  return high - low;
+  return min <= max ? { min, max } : null;
 }
 
 function settleProperty(

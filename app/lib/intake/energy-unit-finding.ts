@@ -62,7 +62,16 @@ export function spreadKcal(candidate: Pick<EnergyCandidate, "min" | "max">, unit
   return (candidate.max - candidate.min) * kcalPer(unit);
 }
 
-function unitByAtoms(candidate: EnergyCandidate, elements: ArrayLike<number>): EnergyUnit | null {
+/**
+ * The unit in which energies come within 1 % of the sum of the isolated atoms (row E07); null where none does.
+ *
+ * @param range lowest and highest value as written
+ * @example unitByAtoms({ min: -76.03, max: -76.02 }, Uint8Array.of(8, 1, 1)) // "hartree"
+ */
+export function unitByAtoms(
+  range: { readonly min: number; readonly max: number },
+  elements: ArrayLike<number>,
+): EnergyUnit | null {
   let sum = 0;
   for (let k = 0; k < elements.length; k++) {
     const atom = ATOM_HARTREE[elements[k]!];
@@ -77,5 +86,5 @@ function unitByAtoms(candidate: EnergyCandidate, elements: ArrayLike<number>): E
     ["kJ/mol", kcalPer("hartree") / kcalPer("kJ/mol")],
   ];
   const fits = (value: number, scale: number) => Math.abs(value / scale / sum - 1) <= ATOM_TOLERANCE;
-  return scales.find(([, scale]) => fits(candidate.min, scale) && fits(candidate.max, scale))?.[0] ?? null;
+  return scales.find(([, scale]) => fits(range.min, scale) && fits(range.max, scale))?.[0] ?? null;
 }
