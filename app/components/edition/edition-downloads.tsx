@@ -1,14 +1,11 @@
 import { useState } from "react";
-import { linkClass as onScreen, TextButton } from "~/components/ui/text-link";
+import { linkClass, TextButton } from "~/components/ui/text-link";
 import { FILE_WORDS } from "~/lib/edition/edition-files";
 import type { EditionView } from "~/lib/edition/views";
 import { formatBytes, formatChecksum } from "~/lib/format";
 import type { EditionAddresses } from "./addresses";
 import { EditionHead } from "./edition-head";
 import { saveFigures } from "./save-figures";
-
-/** Names of files; on paper they are words, not links. */
-const linkClass = `${onScreen} print:text-ink print:no-underline`;
 
 /** Files of an edition with their checksums, then the originals where they go along. */
 export function EditionDownloads({
@@ -24,7 +21,8 @@ export function EditionDownloads({
   return (
     <section className="min-w-0" aria-labelledby="edition-files">
       <EditionHead id="edition-files">Files of this edition</EditionHead>
-      <ul className="files mt-3 border-t border-rule">
+      <Checksums edition={edition} />
+      <ul className="mt-3 border-t border-rule print:hidden">
         {others.map(({ name, bytes, sha256 }) => (
           <Line key={name} name={name} to={addresses.file(name)} bytes={bytes} sha256={sha256} />
         ))}
@@ -34,7 +32,7 @@ export function EditionDownloads({
         ))}
       </ul>
       {edition.sources.length > 0 ? (
-        <>
+        <div className="print:hidden">
           <h3 className="mt-5 text-sm font-semibold">Source files</h3>
           <ul className="mt-2 border-t border-rule">
             {edition.sources.map((file) => (
@@ -54,15 +52,49 @@ export function EditionDownloads({
               </li>
             ))}
           </ul>
-        </>
+        </div>
       ) : null}
       <p className="figures mt-2 text-xs text-ink-3">
         {edition.sources.length === 0 ? "Source files are not part of this link. " : ""}
         Edition checksum: SHA-256{" "}
-        <span title={edition.contentSha256}>{formatChecksum(edition.contentSha256)}</span>. Computed with
-        Lowlying {edition.version}; the same recipe gives the same digits.
+        <span title={edition.contentSha256} className="print:hidden">
+          {formatChecksum(edition.contentSha256)}
+        </span>
+        <span className="not-print:hidden">of results.json</span>. Computed with Lowlying {edition.version},
+        where the same recipe gives the same digits.
       </p>
     </section>
+  );
+}
+
+/** On paper: every file with its whole checksum, so that a copy can be checked against the page in hand. */
+function Checksums({ edition }: { edition: EditionView }) {
+  const files = [
+    ...edition.files.map(({ name, bytes, sha256 }) => ({ name, bytes, sha256 })),
+    ...edition.sources.map(({ name, bytes, sha256 }) => ({ name: `${name} (source)`, bytes, sha256 })),
+  ];
+  return (
+    <table
+      aria-label="Checksums of the files"
+      className="figures mt-3 w-full border-collapse text-xs not-print:hidden"
+    >
+      <thead>
+        <tr className="border-b border-rule-2 text-left">
+          <th className="py-1 font-medium">File</th>
+          <th className="px-3 py-1 text-right font-medium">Size</th>
+          <th className="py-1 font-medium">SHA-256</th>
+        </tr>
+      </thead>
+      <tbody>
+        {files.map(({ name, bytes, sha256 }) => (
+          <tr key={`${name} ${sha256}`} className="border-b border-rule align-baseline">
+            <td className="py-1 [overflow-wrap:anywhere]">{name}</td>
+            <td className="px-3 py-1 text-right whitespace-nowrap text-ink-2">{formatBytes(bytes)}</td>
+            <td className="w-0 py-1 text-[0.625rem] whitespace-nowrap">{sha256}</td>
+          </tr>
+        ))}
+      </tbody>
+    </table>
   );
 }
 
@@ -115,7 +147,7 @@ function Figures({
           </a>
         ))}
       </span>
-      <span className="with-script print:hidden mt-1 flex min-h-6 flex-wrap items-center text-xs">
+      <span className="with-script mt-1 flex min-h-6 flex-wrap items-center text-xs">
         <TextButton disabled={state === "making"} onClick={() => void make()}>
           {state === "making" ? "Drawing" : "SVG and PNG together, zip"}
         </TextButton>

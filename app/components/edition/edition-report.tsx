@@ -191,10 +191,10 @@ function Plots({ edition }: { edition: EditionView }) {
   const cumulative = cumulativePopulation(rows);
   return (
     <section className="mt-10" aria-label="Plots">
-      <noscript>
+      <div className="still keep">
         <StillPlots rows={rows} ladder={ladder} cumulative={cumulative} />
-      </noscript>
-      <div className="with-script grid gap-x-10 gap-y-8 lg:grid-cols-2 print:grid-cols-1">
+      </div>
+      <div className="moving with-script grid gap-x-10 gap-y-8 lg:grid-cols-2">
         {ladder ? (
           <EnergyLadder
             rows={rows}
@@ -227,7 +227,7 @@ function Method({ edition }: { edition: EditionView }) {
   return (
     <section className="min-w-0" aria-labelledby="edition-method">
       <EditionHead id="edition-method">Method</EditionHead>
-      <p className="figures mt-3 max-w-read text-base text-pretty">{text}</p>
+      <p className="figures mt-3 max-w-read text-base text-pretty print:max-w-none">{text}</p>
       {assumed.map((line) => (
         <Note key={line} className="figures mt-2">
           {line}
@@ -239,7 +239,7 @@ function Method({ edition }: { edition: EditionView }) {
         </CopyButton>
       </p>
       <h3 className="mt-5 text-sm font-semibold">To cite it</h3>
-      <p className="figures mt-1 max-w-read text-xs [overflow-wrap:anywhere] text-ink-2">
+      <p className="figures mt-1 max-w-read text-xs [overflow-wrap:anywhere] text-ink-2 print:max-w-none">
         {edition.citations.text}
       </p>
       {edition.level ? (

@@ -1,6 +1,6 @@
 import type { ReactNode } from "react";
 import { depthColour } from "~/components/ui/depth-strip";
-import { fixed, formatPercent } from "~/lib/format";
+import { fixed, formatPercent, plural, withUnit } from "~/lib/format";
 import type { ConformerRow } from "~/lib/workbench/conformers";
 import type { Cumulative } from "~/lib/workbench/cumulative";
 import type { Ladder } from "~/lib/workbench/ladder";
@@ -12,7 +12,7 @@ const LEFT = 36;
 const BOTTOM = 220;
 const TOP = 24;
 
-/** The two figures of an edition for readers without script: the same numbers, drawn once at one width. */
+/** The two figures of an edition on paper and without script: the same numbers, drawn once at one width. */
 export function StillPlots({
   rows,
   ladder,
@@ -26,14 +26,15 @@ export function StillPlots({
   const energy = { low: -0.035 * ladder.top, high: ladder.top };
   const widest = 112 * ladder.widest;
   return (
-    <div className="grid gap-x-10 gap-y-8 lg:grid-cols-2">
+    <div className="grid gap-x-10 gap-y-4 lg:grid-cols-2 print:grid-cols-2">
       <StillPlot
         title="Energy ladder"
         x={{ title: "population, %", low: 0, high: widest }}
         y={{ title: "relative energy, kcal/mol", ...energy }}
       >
-        {(x, y) =>
-          ladder.rungs.map((rung) => (
+        {(x, y) => [
+          <path key="curve" d={curvePath(ladder, widest, x, y)} className="fill-none stroke-ink-3" />,
+          ...named(ladder, y).map(({ rung, name }) => (
             <g key={rung.index}>
               <rect
                 x={LEFT}
@@ -49,9 +50,14 @@ export function StillPlots({
                 height={6}
                 className="fill-ink"
               />
+              {name === null ? null : (
+                <text x={x(100 * rung.population) + 4} y={y(rung.energy) + 4} className="fill-ink-2">
+                  {name}
+                </text>
+              )}
             </g>
-          ))
-        }
+          )),
+        ]}
       </StillPlot>
       <StillPlot
         title="Cumulative population"
@@ -66,20 +72,45 @@ export function StillPlots({
           />
         )}
       </StillPlot>
-      <p className="figures text-ink-2 lg:col-span-2">
+      <p className="figures text-ink-2 lg:col-span-2 print:col-span-2">
         {cumulative.readings
           .map(
             ({ asked, energy: window, count }) =>
               `${formatPercent(asked)} lies within ${fixed(window, 2)} kcal/mol (${count})`,
           )
           .join("; ")}
-        .
+        .{" "}
+        {ladder.above.count > 0
+          ? `${plural(ladder.above.count, "conformer")} above ${withUnit(fixed(ladder.top, 2), "kcal/mol")} not drawn, ${formatPercent(ladder.above.share, 1)}.`
+          : ""}
       </p>
     </div>
   );
 }
 
+/** Rungs with their names where those stand clear of each other; the more populated keep theirs. */
+function named(ladder: Ladder, y: Scale) {
+  const taken: number[] = [];
+  const named = new Set<number>();
+  for (const { index, energy } of [...ladder.rungs].sort((a, b) => b.population - a.population)) {
+    if (taken.some((height) => Math.abs(height - y(energy)) < 12)) continue;
+    taken.push(y(energy));
+    named.add(index);
+  }
+  return ladder.rungs.map((rung) => ({ rung, name: named.has(rung.index) ? rung.name : null }));
+}
+
 type Scale = (value: number) => number;
+
+/** The Boltzmann curve, as far as the axis of populations goes. */
+function curvePath(ladder: Ladder, widest: number, x: Scale, y: Scale): string {
+  const points = ladder.curve.points.filter(({ population }) => 100 * population <= widest);
+  return points
+    .map(({ energy, population }, k) =>
+      [k === 0 ? "M" : "L", x(100 * population).toFixed(1), " ", y(energy).toFixed(1)].join(""),
+    )
+    .join("");
+}
 
 function stepPath(cumulative: Cumulative, top: number, x: Scale, y: Scale): string {
   let path = `M${LEFT} ${BOTTOM}`;
