@@ -159,3 +159,11 @@ describe("a token narrowed to adding (D08)", () => {
     },
   );
 });
+
+it("tells a reader that an edition is not theirs to freeze, whatever the form holds", async () => {
+  const forms: Record<string, string>[] = [{ intent: "freeze" }, { intent: "freeze", sift: ids.sift }];
+  for (const form of forms) {
+    const path = `/ensembles/${ids.ensemble}/hand-over`;
+    expect((await call(path, { form, cookie: people.reader })).status).toBe(403);
+  }
+});

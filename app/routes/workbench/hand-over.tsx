@@ -8,7 +8,7 @@ import { readAveragesState } from "~/lib/averages/averages-state";
 import { readState } from "~/lib/url-state";
 import { readForm } from "~/routes/read-form.server";
 import { editionNumber } from "~/routes/share/share-call.server";
-import type { Actor } from "~/services/auth/access.server";
+import { type Actor, accessEnsemble } from "~/services/auth/access.server";
 import { askToVerify } from "~/services/editions/ask-to-verify.server";
 import { freezeEdition, freezeSchema } from "~/services/editions/freeze-edition.server";
 import { loadHandOver } from "~/services/editions/load-hand-over.server";
@@ -64,6 +64,8 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
   const number = editionNumber(text(form, "number"));
   switch (text(form, "intent")) {
     case "freeze":
+      // Whoever may not hears that, whatever the fields hold.
+      await accessEnsemble(actor, "share", ensembleId);
       return freeze(actor, ensembleId, form);
     case "verify":
       await askToVerify({ actor, ensembleId, number });
