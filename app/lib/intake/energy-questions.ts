@@ -107,9 +107,17 @@ export function energyUnitQuestion(candidate: EnergyCandidate, finding: UnitFind
     id: "energy-unit",
     code: "energy-unit",
     text: "In which unit?",
-    reason: `${evidenceWords(candidate, finding)} The implied spread tells whether a unit can be right.`,
+    reason: `${evidenceWords(candidate, finding)} ${firstWords(candidate)}The implied spread tells whether a unit can be right.`,
     options: ordered.map((unit) => unitOption(candidate, finding, unit)),
   };
+}
+
+/** The numbers as written in the first three frames: a unit is confirmed with them in sight. */
+function firstWords({ first }: EnergyCandidate): string {
+  const written = first.filter((value) => value !== null);
+  return written.length === 0
+    ? ""
+    : `${written.length === 1 ? "The first value is" : "The first values are"} ${written.map((value) => value.slice(0, 30)).join(", ")}. `;
 }
 
 function evidenceWords(candidate: EnergyCandidate, finding: UnitFinding): string {
