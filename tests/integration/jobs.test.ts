@@ -179,11 +179,16 @@ describe("a sift that runs", () => {
   it("is cancelled: the thread stops, the answer says so, nothing is stored (security E10)", async () => {
     await startJobs();
     const { id, jobId } = await running();
-    expect((await (await call(`/api/v1/sifts/${id}`, { token })).json()).progress).toBeGreaterThan(0);
+    const { progress } = await (await call(`/api/v1/sifts/${id}`, { token })).json();
+    expect(progress).toBeGreaterThan(0);
     const waiting = call(`/api/v1/sifts/${id}?wait=60`, { token });
     const answer = await call(`/api/v1/sifts/${id}`, { method: "DELETE", token });
     expect(answer.status).toBe(202);
-    expect(await answer.json()).toMatchObject({ id, status: "cancelled" });
+    const cancelled = await answer.json();
+    expect(cancelled).toMatchObject({ id, status: "cancelled" });
+    // What was told once is not taken back.
+    expect(cancelled.progress).toBeGreaterThanOrEqual(progress);
+    expect((await (await call(`/api/v1/sifts/${id}`, { token })).json()).progress).toBe(cancelled.progress);
     expect(await (await waiting).json()).toMatchObject({ status: "cancelled", result: null });
     await vi.waitFor(() => expect(jobState().running.size).toBe(0), 5_000);
     expect(await row(jobId)).toMatchObject({ state: "cancelled" });

@@ -1,17 +1,25 @@
-import { and, eq, inArray } from "drizzle-orm";
+import { and, eq, inArray, sql } from "drizzle-orm";
 import { db, type Queryable } from "../../db/client.server.ts";
 import { jobs } from "../../db/schema.server.ts";
-import { jobState, type RunningJob } from "./state.server.ts";
+import { jobState, progressHere, type RunningJob } from "./state.server.ts";
 import { announceEnd } from "./wait-for-job.server.ts";
 
 /** A thread looks at its word every few milliseconds; one that does not is ended. */
 const PATIENCE_MS = 1_000;
 
-/** Marks a job cancelled; true where it was queued or running. Call `stopRunning` once the transaction is in. */
+/**
+ * Marks a job cancelled; true where it was queued or running. Call `stopRunning` once the transaction is in. How far it
+ * had come stays with it: the row alone is as old as the last sign of life.
+ */
 export async function markCancelled(tx: Queryable, jobId: string): Promise<boolean> {
   const [outcome] = await tx
     .update(jobs)
-    .set({ state: "cancelled", leaseUntil: null, finishedAt: new Date() })
+    .set({
+      state: "cancelled",
+      progress: sql`greatest(${jobs.progress}, ${progressHere(jobId) ?? 0})`,
+      leaseUntil: null,
+      finishedAt: new Date(),
+    })
     .where(and(eq(jobs.id, jobId), inArray(jobs.state, ["queued", "running"])));
   return outcome.affectedRows === 1;
 }

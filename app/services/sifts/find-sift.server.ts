@@ -62,7 +62,7 @@ async function find(where: SQL | undefined, on: Queryable): Promise<FoundSift[]>
     const here = row.status === "running" ? progressHere(row.jobId) : null;
     return {
       ...row,
-      progress: row.status === "done" ? 1 : (here ?? row.progress),
+      progress: row.status === "done" ? 1 : Math.max(here ?? 0, row.progress),
       current: now !== null && inputSha !== null && now.equals(inputSha),
     };
   });
