@@ -1,6 +1,6 @@
 import { useCallback, useLayoutEffect, useMemo, useRef } from "react";
 import { useLocation, useNavigate } from "react-router";
-import { readState, searchOf, type WorkbenchState, writeState } from "~/lib/url-state";
+import { changeState, readState, searchOf, type WorkbenchState, writeState } from "~/lib/url-state";
 
 export interface ChangeHow {
   /** The change takes the place of the step before it in the browser's history. */
@@ -36,7 +36,7 @@ export function useAddressState(): [WorkbenchState, ChangeState] {
   const change = useCallback<ChangeState>(
     async (part, how) => {
       const now = new URLSearchParams(latest.current);
-      const next = searchOf(writeState({ ...readState(now), ...part }, now));
+      const next = searchOf(writeState(changeState(readState(now), part), now));
       if (next === searchOf(now)) return;
       latest.current = next;
       const of = Object.keys(part).join();

@@ -1,6 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import {
+  changeState,
   defaultState,
   MAX_SELECTED,
   readState,
@@ -26,6 +27,7 @@ describe("reading", () => {
       temperatureK: 310.5,
       windowKcal: 2.5,
       selected: [11, 235, 105],
+      pair: false,
       atoms: [2, 3, 4, 5],
       align: [0, 1, 2],
       hydrogens: "all",
@@ -42,6 +44,21 @@ describe("reading", () => {
         sigmaKcal: 0.5,
       },
     } satisfies WorkbenchState);
+  });
+
+  test("two laid over each other are a pair, as long as nothing else is selected", () => {
+    const pair = readState(new URLSearchParams("v=1&sel=105,3&pair=1"));
+    expect(pair).toMatchObject({ selected: [105, 3], pair: true });
+    expect(searchOf(writeState(pair))).toBe("?v=1&sel=105,3&pair=1");
+    expect(searchOf(writeState(changeState(pair, { temperatureK: 310 })))).toContain("pair=1");
+    expect(searchOf(writeState(changeState(pair, { selected: [105, 4] })))).toBe("?v=1&sel=105,4");
+    expect(changeState(pair, { selected: [7, 8], pair: true })).toMatchObject({
+      selected: [7, 8],
+      pair: true,
+    });
+    for (const other of ["sel=105,3", "sel=105&pair=1", "sel=1,2,3&pair=1", "pair=1", "sel=1,2&pair=yes"]) {
+      expect(readState(new URLSearchParams(other)).pair, other).toBe(false);
+    }
   });
 
   test("an emptied selection is not the same as none made", () => {
@@ -93,7 +110,7 @@ describe("reading", () => {
   test("any text whatever gives a state that writes and reads back", () => {
     fc.assert(
       fc.property(
-        fc.dictionary(fc.constantFrom("T", "w", "sel", "at", "h", "m", "sort", "sift"), fc.string()),
+        fc.dictionary(fc.constantFrom("T", "w", "sel", "pair", "at", "h", "m", "sort", "sift"), fc.string()),
         (d) => {
           const state = readState(new URLSearchParams(d));
           expect(readState(writeState(state))).toEqual(state);
@@ -115,11 +132,12 @@ describe("writing", () => {
   });
 
   test("what is written is read back", () => {
-    const state = fc.record({
+    const any = fc.record({
       sift: fc.option(fc.stringMatching(/^[a-z2-7]{16}$/)),
       temperatureK: fc.integer({ min: 10000, max: 100000 }).map((centi) => centi / 100),
       windowKcal: fc.option(fc.integer({ min: 1, max: 100000 }).map((centi) => centi / 100)),
       selected: fc.option(fc.uniqueArray(fc.integer({ min: 1, max: 50000 }), { maxLength: MAX_SELECTED })),
+      pair: fc.boolean(),
       atoms: fc.uniqueArray(fc.integer({ min: 0, max: 999 }), { maxLength: 4 }),
       align: fc.option(fc.uniqueArray(fc.integer({ min: 0, max: 999 }), { minLength: 3, maxLength: 12 })),
       hydrogens: fc.constantFrom("none", "polar", "all"),
@@ -138,6 +156,7 @@ describe("writing", () => {
         sigmaKcal: fc.integer({ min: 0, max: 2000 }).map((centi) => centi / 100),
       }),
     });
+    const state = any.map((s) => ({ ...s, pair: s.pair && s.selected?.length === 2 }));
     fc.assert(
       fc.property(state, (s) => {
         expect(readState(new URLSearchParams(searchOf(writeState(s as WorkbenchState))))).toEqual(s);

@@ -13,6 +13,8 @@ export interface WorkbenchState {
   windowKcal: number | null;
   /** Frame numbers in the order chosen; null is "not chosen", which the page reads as the lowest conformer. */
   selected: number[] | null;
+  /** The two selected are shown alone, the second laid over the first; only where two are selected. */
+  pair: boolean;
   /** Picked atoms, counted from 0 here and from 1 in the address; up to four, each once. */
   atoms: number[];
   /** Atoms that conformers are laid over each other on, from 0 here and from 1 in the address; null is all heavy atoms. */
@@ -71,7 +73,7 @@ const NUMBER = /^\d{1,9}(\.\d{1,9})?$/;
 const SORT = /^([a-z][a-z-]{0,30})\.(up|down)$/;
 /** Names of the state in the address. Other parameters belong to somebody else and are kept. */
 const KEYS = [
-  ...["v", "sift", "T", "w", "sel", "at", "al", "h", "m", "weights", "sort"],
+  ...["v", "sift", "T", "w", "sel", "pair", "at", "al", "h", "m", "weights", "sort"],
   ...["level", "ref", "zero", "zf", "of", "keep", "err"],
 ];
 
@@ -81,6 +83,7 @@ export function defaultState(): WorkbenchState {
     temperatureK: STANDARD_TEMPERATURE_K,
     windowKcal: DEFAULT_WINDOW_KCAL,
     selected: null,
+    pair: false,
     atoms: [],
     align: null,
     hydrogens: "polar",
@@ -108,6 +111,7 @@ export function defaultState(): WorkbenchState {
 export function readState(params: URLSearchParams): WorkbenchState {
   const start = defaultState();
   const sort = SORT.exec(params.get("sort") ?? "");
+  const selected = params.has("sel") ? readCounts(params.get("sel"), MAX_SELECTED) : null;
   return {
     sift: ID.test(params.get("sift") ?? "") ? params.get("sift") : null,
     temperatureK:
@@ -116,7 +120,8 @@ export function readState(params: URLSearchParams): WorkbenchState {
       params.get("w") === "none"
         ? null
         : (readNumber(params.get("w"), 1e-6, MAX_WINDOW_KCAL, "kcal/mol") ?? start.windowKcal),
-    selected: params.has("sel") ? readCounts(params.get("sel"), MAX_SELECTED) : null,
+    selected,
+    pair: selected?.length === 2 && params.get("pair") === "1",
     atoms: readCounts(params.get("at"), MAX_PICKED).map((atom) => atom - 1),
     align: readAtoms(params.get("al")),
     hydrogens: oneOf(params.get("h"), ["none", "polar", "all"], start.hydrogens),
@@ -154,6 +159,11 @@ function compareParts(compare: CompareState, start: CompareState): [string, stri
   return pairs;
 }
 
+/** A state with some of it changed. Two laid over each other are so as long as nothing else is selected. */
+export function changeState(state: WorkbenchState, part: Partial<WorkbenchState>): WorkbenchState {
+  return { ...state, ...(part.selected === undefined ? {} : { pair: false }), ...part };
+}
+
 /**
  * Writes a state into the parameters of an address; parameters of others are kept as they are.
  *
@@ -168,6 +178,7 @@ export function writeState(state: WorkbenchState, others?: URLSearchParams): URL
   if (state.windowKcal !== start.windowKcal)
     pairs.push(["w", state.windowKcal === null ? "none" : writeNumber(state.windowKcal)]);
   if (state.selected !== null) pairs.push(["sel", state.selected.slice(0, MAX_SELECTED).join(",")]);
+  if (state.pair && state.selected?.length === 2) pairs.push(["pair", "1"]);
   if (state.atoms.length > 0)
     pairs.push([
       "at",

@@ -108,7 +108,7 @@ test.describe("distinct set", () => {
       .getByRole("button", { name: /^Lay over frame/ })
       .first()
       .press("Enter");
-    await expect(page.getByText(/with frame \d+ laid over it/)).toBeVisible();
+    await expect(page.getByText(/^Frame \d+ laid over c\d+: (same hand|mirror image), RMSD/)).toBeVisible();
     await page.getByLabel("Which conformer is frame").fill("200");
     await page.keyboard.press("Enter");
     await expect(page.getByText(/^Frame 200 (repeats c[12]|is c[12] itself)/)).toBeVisible();

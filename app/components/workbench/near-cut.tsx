@@ -3,7 +3,6 @@ import { BlockHead } from "~/components/ui/finding";
 import { ProgressBar } from "~/components/ui/progress-bar";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
-import { setLaidOver } from "~/hooks/use-laid-over";
 import type { NearnessAnswer } from "~/hooks/whole-ensemble-protocol";
 import type { NearPair } from "~/lib/align/nearness";
 import { formatEnergy, formatRmsd, formatRmsdBeside, plural, withUnit } from "~/lib/format";
@@ -92,13 +91,13 @@ function PairRow({
   energy,
   children,
 }: {
-  frames: number[];
+  frames: [first: number, second: number];
   rmsd: number;
   exact: boolean;
   energy: number | null;
   children: ReactNode;
 }) {
-  const { show, selected, sift } = useWorkbench();
+  const { layOver, selected, sift } = useWorkbench();
   const shown = selected.length === 2 && frames.every((frame) => selected.includes(frame));
   return (
     <Tr selected={shown}>
@@ -106,10 +105,7 @@ function PairRow({
         <TextButton
           printed
           className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
-          onClick={() => {
-            setLaidOver(frames);
-            show(frames);
-          }}
+          onClick={() => layOver(...frames)}
         >
           {children}
         </TextButton>
@@ -139,7 +135,7 @@ function Searching({ progress }: { progress: { done: number; of: number } | null
 
 /** The conformers nearest to the one that is selected. */
 export function NearestToSelected() {
-  const { rows, column, reference, show } = useWorkbench();
+  const { rows, column, reference, layOver } = useWorkbench();
   if (reference === null || rows.length < 2) return null;
   const ready = column !== null && column.reference === reference.index && column.known >= column.rmsd.length;
   const others = ready ? nearestOthers(column.rmsd, column.reference, 5) : [];
@@ -168,11 +164,7 @@ export function NearestToSelected() {
                     <TextButton
                       printed
                       className="inline-flex min-h-6 items-center text-ink no-underline hover:underline"
-                      onClick={() => {
-                        const frames = [reference.frame, row.frame];
-                        setLaidOver(frames);
-                        show(frames);
-                      }}
+                      onClick={() => layOver(reference.frame, row.frame)}
                     >
                       {row.name}
                       <span className="sr-only"> laid over {reference.name}</span>

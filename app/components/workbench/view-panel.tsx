@@ -7,7 +7,6 @@ import { Viewer, type ViewerProps } from "~/components/viewer/viewer";
 import { failureWords } from "~/hooks/failure-words";
 import { useCoordinates } from "~/hooks/use-coordinates";
 import { useHovered } from "~/hooks/use-hovered";
-import { useLaidOver } from "~/hooks/use-laid-over";
 import { useSettled } from "~/hooks/use-settled";
 import { perceiveBonds } from "~/lib/chem/bonds";
 import { formatCount, formatRmsd, plural, withUnit } from "~/lib/format";
@@ -15,9 +14,15 @@ import { formatMeasure, measureKind, measureLabel, measureValue } from "~/lib/me
 import { makeGraph } from "~/lib/structure";
 import type { EnsembleView, SiftView } from "~/lib/views";
 import { coinciding } from "~/lib/workbench/coincide";
-import { ConformerDistances, laidOver } from "~/lib/workbench/distances";
 import { frameSentence, joinWords } from "~/lib/workbench/findings";
-import { frameName, MAX_COLOURED, type ShownFrame, viewPlan } from "~/lib/workbench/view-plan";
+import { type LaidOver, layOver } from "~/lib/workbench/lay-over";
+import {
+  frameName,
+  laidOverCaption,
+  MAX_COLOURED,
+  type ShownFrame,
+  viewPlan,
+} from "~/lib/workbench/view-plan";
 import { useWorkbench } from "./workbench-context";
 
 const REST_MS = 150;
@@ -41,9 +46,7 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
       : state.align.length <= NAMED_ATOMS
         ? `aligned on ${measureLabel(ensemble.elements, state.align).replaceAll("\u2013", ", ")}`
         : `aligned on ${formatCount(state.align.length)} atoms`;
-  const asked = useLaidOver();
-  const pair =
-    asked !== null && asked.length === selected.length && asked.every((frame, k) => frame === selected[k]);
+  const pair = state.pair && selected.length === 2;
   const plan = useMemo(
     () => viewPlan({ rows: shownRows, roles, held, selected, mode: state.mode, alignedOn, pair }),
     [shownRows, roles, held, selected, state.mode, alignedOn, pair],
@@ -52,10 +55,26 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
     () => new Map([...coordinates.positions, ...own.positions]),
     [coordinates.positions, own.positions],
   );
-  const conformers = useMemo(
-    () => conformersOf(plan.frames, positions, { ensemble, sift, roles, held, lit }),
-    [plan.frames, positions, ensemble, sift, roles, held, lit],
+  const laid = useMemo(
+    () => laidOverFirst(plan.frames, positions, { ensemble, sift, held }),
+    [plan.frames, positions, ensemble, sift, held],
   );
+  const conformers = useMemo(
+    () => conformersOf(plan.frames, positions, { ensemble, laid, roles, held, lit }),
+    [plan.frames, positions, ensemble, laid, roles, held, lit],
+  );
+  const caption =
+    laid.size === 0
+      ? plan.caption
+      : laidOverCaption(
+          plan.frames.map(({ frame }) => frame),
+          {
+            roles,
+            held,
+            mode: state.mode,
+            apart: new Map([...laid].map(([frame, { distance }]) => [frame, distance])),
+          },
+        );
 
   const hidden = useMemo(
     () => (state.mode === "overlay" ? hiddenWords(ensemble, conformers) : null),
@@ -92,7 +111,7 @@ export function ViewPanel({ held }: { held: ReadonlySet<number> }) {
         mode={state.mode}
         onMode={(mode) => change({ mode })}
         onHydrogens={(hydrogens) => change({ hydrogens })}
-        caption={plan.caption}
+        caption={caption}
         measures={label !== null && firstValue !== null ? [{ label, text: firstValue }] : []}
         title={ensemble.name}
       >
@@ -193,23 +212,21 @@ function conformersOf(
   positions: ReadonlyMap<number, Float64Array>,
   around: {
     ensemble: EnsembleView;
-    sift: SiftView | null;
+    laid: ReadonlyMap<number, LaidOver>;
     roles: Parameters<typeof frameName>[1];
     held: ReadonlySet<number>;
     lit: number | null;
   },
 ): ViewerProps["conformers"] {
-  const first = frames[0] ? positions.get(frames[0].frame) : undefined;
   const coloured = frames.filter((one) => one.selected).length;
   return frames.flatMap((one) => {
     const at = positions.get(one.frame);
     if (!at) return [];
-    const over = one.laidOver && first ? laidOverFirst(around.ensemble, around.sift, first, at) : at;
     return [
       {
         frame: one.frame,
         name: frameName(one.frame, around.roles, around.held),
-        positions: over,
+        positions: around.laid.get(one.frame)?.positions ?? at,
         population: one.population,
         selected: one.selected || (around.lit === one.frame && coloured < MAX_COLOURED),
         ...(one.held
@@ -223,22 +240,22 @@ function conformersOf(
   });
 }
 
-/** The second structure in the atom order, and the hand, in which the sift found it nearest to the first. */
+/** Those that are laid over the first, by frame, as the sift compares; what is held is never reflected. */
 function laidOverFirst(
-  ensemble: EnsembleView,
-  sift: SiftView | null,
-  first: Float64Array,
-  second: Float64Array,
-): Float64Array {
-  if (sift === null) return second;
-  const graph = makeGraph(Uint8Array.from(ensemble.elements), ensemble.bonds);
-  const distances = new ConformerDistances(graph, {
-    atoms: sift.recipe.atoms,
-    symmetry: sift.recipe.symmetry,
-    mirror: sift.recipe.mirror === "merge",
-  });
-  distances.add(first);
-  distances.add(second);
-  const { distance, permutation } = distances.exchange(0, 1);
-  return laidOver(second, permutation, distance.mirror);
+  frames: readonly ShownFrame[],
+  positions: ReadonlyMap<number, Float64Array>,
+  around: { ensemble: EnsembleView; sift: SiftView | null; held: ReadonlySet<number> },
+): ReadonlyMap<number, LaidOver> {
+  const laid = new Map<number, LaidOver>();
+  const first = frames[0];
+  const under = first && positions.get(first.frame);
+  if (!under || around.sift === null) return laid;
+  const { atoms, symmetry, mirror } = around.sift.recipe;
+  for (const { frame, laidOver } of frames) {
+    const at = laidOver ? positions.get(frame) : undefined;
+    if (!at) continue;
+    const images = mirror === "merge" && !around.held.has(frame) && !around.held.has(first.frame);
+    laid.set(frame, layOver(around.ensemble, { atoms, symmetry, mirror: images }, under, at));
+  }
+  return laid;
 }

@@ -40,6 +40,8 @@ export interface Workbench {
   selected: readonly number[];
   select: (frame: number, how: "only" | "add" | "extend", order: readonly number[]) => void;
   show: (frames: readonly number[]) => void;
+  /** Shows the two alone, the second laid over the first. */
+  layOver: (first: number, second: number) => void;
   coordinates: Coordinates;
   /** Conformers whose coordinates the computed columns cover. */
   measured: ReadonlySet<number>;
@@ -119,6 +121,10 @@ export function WorkbenchProvider({
     [change, selected],
   );
   const show = useCallback<Workbench["show"]>((frames) => change({ selected: [...frames] }), [change]);
+  const layOver = useCallback<Workbench["layOver"]>(
+    (first, second) => change({ selected: [first, second], pair: true, mode: "overlay" }),
+    [change],
+  );
 
   const { coordinates, measured, column, reference } = useMeasures({
     ensemble,
@@ -147,6 +153,7 @@ export function WorkbenchProvider({
       selected,
       select,
       show,
+      layOver,
       coordinates,
       measured,
       column,
@@ -169,6 +176,7 @@ export function WorkbenchProvider({
       selected,
       select,
       show,
+      layOver,
       coordinates,
       measured,
       column,

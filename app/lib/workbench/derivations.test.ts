@@ -29,7 +29,7 @@ import { sortRows } from "./sort-rows.ts";
 import { stations } from "./stations.ts";
 import { roundTicks, tickDigits } from "./ticks.ts";
 import { toCsv, toTsv } from "./tsv.ts";
-import { viewPlan } from "./view-plan.ts";
+import { laidOverCaption, viewPlan } from "./view-plan.ts";
 
 const NBSP = "\u00a0";
 
@@ -517,9 +517,26 @@ describe("what the view shows", () => {
       [5, true],
     ]);
     expect(caption).toEqual({
-      strong: "c2",
-      rest: `with frame 5 laid over it; mirror image, RMSD below 0.001${NBSP}Å`,
+      strong: "Frame 5",
+      rest: `laid over c2: mirror image, RMSD below 0.001${NBSP}Å`,
     });
+  });
+
+  test("of a pair the hand and the distance are named, whichever it is", () => {
+    const around = { roles, held: new Set([7]), mode: "overlay" as const };
+    const said = (frames: number[], mirror: boolean, exact = true) => {
+      const apart = new Map(frames.slice(1).map((frame) => [frame, { rmsd: 0.3652, mirror, exact }]));
+      const { strong, rest } = laidOverCaption(frames, { ...around, apart });
+      return `${strong} ${rest}`;
+    };
+    expect(said([2, 1], true)).toBe(`c1 laid over c2: mirror image, RMSD 0.365${NBSP}Å`);
+    expect(said([2, 1], false)).toBe(`c1 laid over c2: same hand, RMSD 0.365${NBSP}Å`);
+    expect(said([2, 1], false, false)).toBe(`c1 laid over c2: same hand, RMSD at most 0.365${NBSP}Å`);
+    expect(said([2, 1, 4], true)).toBe(
+      `c2 with c1 (mirror image, RMSD 0.365${NBSP}Å) and c4 (mirror image, RMSD 0.365${NBSP}Å) laid over it`,
+    );
+    // What is held is no conformer, and is never compared as one.
+    expect(said([2, 7], true)).toBe("Frame 7 laid over c2: held");
   });
 
   test("a held frame stands alone and is named so", () => {

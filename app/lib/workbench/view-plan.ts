@@ -1,6 +1,7 @@
-import { capital, formatCount, formatRmsd, plural, withUnit } from "../format.ts";
+import { capital, formatCount, formatRmsd, withUnit } from "../format.ts";
 import type { ViewMode } from "../url-state.ts";
 import { byPopulation, type ConformerRow, type FrameRole } from "./conformers.ts";
+import type { Distance } from "./distances.ts";
 import { joinWords } from "./findings.ts";
 
 /** More overlaid lines than this say nothing new and slow the view. */
@@ -60,7 +61,7 @@ export function viewPlan(options: {
     const frames = selected.slice(0, mode === "one" ? 1 : MAX_COLOURED);
     return {
       frames: frames.map((frame, k) => shown(frame, k > 0 && roles.has(frame))),
-      caption: strangerCaption(frames, roles, name, held),
+      caption: laidOverCaption(frames, { roles, held, mode }),
       notDrawn: 0,
     };
   }
@@ -111,13 +112,24 @@ export function frameName(
   return role?.kind === "kept" && !held.has(frame) ? role.name : `frame ${frame}`;
 }
 
-function strangerCaption(
+/**
+ * What is laid over what, in which hand and how near; frames that are shown by themselves otherwise.
+ *
+ * @param frames as drawn; the first is what the others are laid over
+ * @param around.apart distances to the first by frame, as far as they are known. Of a repeat the sift itself says it.
+ */
+export function laidOverCaption(
   frames: readonly number[],
-  roles: ReadonlyMap<number, FrameRole>,
-  name: (frame: number) => string,
-  held: ReadonlySet<number>,
+  around: {
+    roles: ReadonlyMap<number, FrameRole>;
+    held: ReadonlySet<number>;
+    mode: ViewMode;
+    apart?: ReadonlyMap<number, Distance>;
+  },
 ): { strong: string; rest: string } {
-  const [first, second] = frames;
+  const { roles, held, mode } = around;
+  const name = (frame: number) => frameName(frame, roles, held);
+  const [first, second, ...more] = frames;
   if (first === undefined) return { strong: "Nothing chosen", rest: "select a conformer in the table" };
   // A conformer keeps its name: C1 is an atom.
   const upper = (text: string) => (text.startsWith("frame ") ? capital(text) : text);
@@ -126,17 +138,30 @@ function strangerCaption(
     if (held.has(first)) return { strong: upper(name(first)), rest: "held" };
     return { strong: upper(name(first)), rest: role?.kind === "repeat" ? `repeats ${role.name}` : "" };
   }
-  const role = roles.get(second);
-  if (frames.length > 2)
-    return {
-      strong: joinWords(frames.map(name)),
-      rest: `${plural(frames.length, "frame")} laid over each other`,
-    };
-  if (role?.kind !== "repeat" || role.repeats !== first) {
-    return { strong: name(first), rest: `with ${name(second)} laid over it` };
-  }
-  return {
-    strong: name(first),
-    rest: `with ${name(second)} laid over it; ${role.mirror ? "mirror image, " : ""}RMSD ${withUnit(formatRmsd(role.rmsd), "Å")}`,
+  const words = (frame: number) => {
+    if (held.has(frame)) return "held";
+    const role = roles.get(frame);
+    if (role?.kind === "repeat" && role.repeats === first)
+      return apartWords({ rmsd: role.rmsd, mirror: role.mirror, exact: !role.upperBound });
+    const apart = around.apart?.get(frame);
+    return apart === undefined || held.has(first) ? null : apartWords(apart);
   };
+  const how = mode === "side" ? "beside" : "laid over";
+  if (more.length > 0) {
+    const others = [second, ...more].map((frame) => [name(frame), words(frame)] as const);
+    return {
+      strong: upper(name(first)),
+      rest: `with ${joinWords(others.map(([text, apart]) => (apart === null ? text : `${text} (${apart})`)))} ${how}${mode === "side" ? "" : " it"}`,
+    };
+  }
+  const apart = words(second);
+  return {
+    strong: upper(name(second)),
+    rest: `${how} ${name(first)}${apart === null ? "" : `: ${apart}`}`,
+  };
+}
+
+/** "mirror image, RMSD 0.365 Å": a reflection is never shown without its name. */
+function apartWords({ rmsd, mirror, exact }: Distance): string {
+  return `${mirror ? "mirror image" : "same hand"}, RMSD ${exact ? "" : "at most "}${withUnit(formatRmsd(rmsd), "Å")}`;
 }
