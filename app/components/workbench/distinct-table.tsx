@@ -33,6 +33,8 @@ const FIRST_ROWS = 12;
 /** On paper; a last row counts what is left. */
 const PRINTED_ROWS = 500;
 const FIRST_REPEATS = 7;
+/** Exchanges that a row names before it counts the rest. */
+const FIRST_EXCHANGES = 3;
 /** px of a row, and of one that says which search found it; of what an opened row shows until it was measured. */
 const ROW_HEIGHT = 36;
 const TALL_ROW_HEIGHT = 53;
@@ -289,7 +291,7 @@ function KeptRow({
           {row.upperBound ? "to " : ""}
           {formatRmsd(row.mirrorRmsd)}
         </Td>
-        <Td>
+        <Td wrap={Boolean(row.foundIn)}>
           <span className="flex items-center gap-3">
             <span className="w-18 shrink-0 text-right max-sm:w-9 max-[24rem]:w-auto max-[24rem]:shrink">
               <span className={MID}>found </span>
@@ -357,6 +359,24 @@ function LayOver({ frame, laid, onLay }: { frame: number; laid: boolean; onLay: 
   );
 }
 
+/** The first exchanges of a repeat, the others when asked for; absent while the coordinates are on their way. */
+function ExchangedCell({ exchanges }: { exchanges: readonly string[] | undefined }) {
+  const [all, setAll] = useState(false);
+  const more = (exchanges?.length ?? 0) - FIRST_EXCHANGES;
+  const shown = more > 1 && !all ? exchanges?.slice(0, FIRST_EXCHANGES) : exchanges;
+  return (
+    <Td wrap className={`min-w-36 ${MID}`}>
+      {shown === undefined ? "…" : shown.join(", ") || "none"}
+      {more > 1 && !all ? (
+        <>
+          {" "}
+          <TextButton onClick={() => setAll(true)}>and {more} more</TextButton>
+        </>
+      ) : null}
+    </Td>
+  );
+}
+
 function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly DroppedFrame[] }) {
   const { show, selected } = useWorkbench();
   const [all, setAll] = useState(false);
@@ -397,7 +417,7 @@ function Repeats({ row, repeats }: { row: ConformerRow; repeats: readonly Droppe
                 {formatEnergy(frame.energyDifference)}
               </Td>
               <Td>{frame.mirror ? "mirror image" : "same hand"}</Td>
-              {exchanged ? <Td className={MID}>{exchanged.get(frame.frame) ?? "…"}</Td> : null}
+              {exchanged ? <ExchangedCell exchanges={exchanged.get(frame.frame)} /> : null}
               <Td align="right">
                 <LayOver
                   frame={frame.frame}

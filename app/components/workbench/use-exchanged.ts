@@ -12,7 +12,7 @@ import { useWorkbench } from "./workbench-context";
 export function useExchanged(
   kept: number,
   repeats: readonly DroppedFrame[],
-): ReadonlyMap<number, string> | null {
+): ReadonlyMap<number, readonly string[]> | null {
   const { ensemble, sift } = useWorkbench();
   const recipe = sift?.recipe ?? null;
   const exchanges = useMemo(() => {
@@ -27,10 +27,10 @@ export function useExchanged(
   return useMemo(() => {
     if (exchanges === null) return null;
     const first = positions.get(kept);
-    const words = new Map<number, string>();
+    const words = new Map<number, readonly string[]>();
     for (const { frame } of first ? repeats : []) {
       const second = positions.get(frame);
-      if (first && second) words.set(frame, exchanges.between(first, second) || "none");
+      if (first && second) words.set(frame, exchanges.between(first, second));
     }
     return words;
   }, [exchanges, positions, kept, repeats]);

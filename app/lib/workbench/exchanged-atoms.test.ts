@@ -6,22 +6,12 @@ import { ExchangedAtoms, exchangeWords } from "./exchanged-atoms.ts";
 describe("exchanges of equivalent atoms", () => {
   test("are named atom by atom, hydrogens that only follow left out", () => {
     const elements = [6, 8, 8, 1, 1, 1];
-    expect(exchangeWords(elements, [0, 1, 2], [0, 2, 1, 4, 5, 3])).toBe("O2 with O3");
-    expect(exchangeWords(elements, [0, 1, 2, 3, 4, 5], [0, 2, 1, 4, 5, 3])).toBe(
-      "O2 with O3, H4 to H5 to H6",
-    );
-    expect(exchangeWords(elements, [0, 1, 2], [0, 1, 2, 4, 5, 3])).toBe("");
-  });
-
-  test("are counted where there are many", () => {
-    const permutation = [1, 0, 3, 2, 5, 4, 7, 6, 9, 8];
-    const atoms = permutation.map((_, k) => k);
-    expect(exchangeWords(new Array(10).fill(6), atoms, permutation)).toBe(
-      "C1 with C2, C3 with C4, C5 with C6 and 2 more",
-    );
-    expect(exchangeWords(new Array(8).fill(6), atoms.slice(0, 8), permutation)).toBe(
-      "C1 with C2, C3 with C4, C5 with C6, C7 with C8",
-    );
+    expect(exchangeWords(elements, [0, 1, 2], [0, 2, 1, 4, 5, 3])).toEqual(["O2 with O3"]);
+    expect(exchangeWords(elements, [0, 1, 2, 3, 4, 5], [0, 2, 1, 4, 5, 3])).toEqual([
+      "O2 with O3",
+      "H4 to H5 to H6",
+    ]);
+    expect(exchangeWords(elements, [0, 1, 2], [0, 1, 2, 4, 5, 3])).toEqual([]);
   });
 
   test("are found between two frames of a real molecule whose equivalent atoms were numbered anew", () => {
@@ -34,7 +24,7 @@ describe("exchanges of equivalent atoms", () => {
     const ends = { atoms: "heavy", symmetry: true, mirror: false } as const;
     const exchanges = new ExchangedAtoms(graph, ends);
     expect(exchanges.possible).toBe(true);
-    expect(exchanges.between(first, first)).toBe("");
+    expect(exchanges.between(first, first)).toEqual([]);
     // The same shape, its ends named the other way round, stretched at one end so that the ends are told apart.
     const stretched = first.slice();
     for (let c = 0; c < 3; c++) stretched[3 * fluorines[0]! + c]! += 0.3 * (c === 0 ? 1 : 0.5);
@@ -45,11 +35,8 @@ describe("exchanges of equivalent atoms", () => {
       turned.set(stretched.subarray(3 * a, 3 * a + 3), 3 * b);
     }
     const words = [carbons, fluorines].map(([a, b]) => [a! + 1, b! + 1]);
-    expect(exchanges.between(stretched, turned)).toBe(
-      words
-        .map(([a, b], k) => (k === 0 ? `C${a} with C${b}` : `F${a} with F${b}`))
-        .sort((x, y) => Number(x.slice(1, 2)) - Number(y.slice(1, 2)))
-        .join(", "),
+    expect(exchanges.between(stretched, turned).sort()).toEqual(
+      words.map(([a, b], k) => (k === 0 ? `C${a} with C${b}` : `F${a} with F${b}`)),
     );
     expect(new ExchangedAtoms(graph, { ...ends, symmetry: false }).possible).toBe(false);
   });

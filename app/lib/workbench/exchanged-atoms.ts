@@ -7,14 +7,11 @@ import type { DistanceSettings } from "./distances.ts";
 
 /** Å by which an exchange must beat the atoms as numbered to be named: less is the symmetry of the shape itself. */
 const BETTER = 1e-6;
-/** Exchanges that a cell of a table names before it counts the rest. */
-const NAMED = 3;
-
 /**
  * Which equivalent atoms had to be exchanged so that one structure lies nearest to another, by the atoms, symmetry and
  * treatment of mirror images of a recipe. Holds the work that all pairs share; not re-entrant.
  *
- * @example new ExchangedAtoms(acid, options).between(first, second) // "O7 with O8"
+ * @example new ExchangedAtoms(acid, options).between(first, second) // ["O7 with O8"]
  */
 export class ExchangedAtoms {
   private readonly bySymmetry: SymmetricRmsd;
@@ -37,14 +34,14 @@ export class ExchangedAtoms {
   }
 
   /**
-   * The exchanges in words, "" where the atoms lie best as they are numbered.
+   * The exchanges in words, none where the atoms lie best as they are numbered.
    *
    * @param first, second packed x, y, z of all atoms in Å
    */
-  between(first: Float64Array, second: Float64Array): string {
+  between(first: Float64Array, second: Float64Array): string[] {
     const plain = this.distance(this.byNumber, first, second);
     const least = this.distance(this.bySymmetry, first, second);
-    if (plain <= least + BETTER) return "";
+    if (plain <= least + BETTER) return [];
     return exchangeWords(this.graph.elements, this.bySymmetry.plan.atoms, this.bySymmetry.permutation());
   }
 
@@ -57,7 +54,7 @@ export class ExchangedAtoms {
 }
 
 /**
- * The cycles of an exchange: "O7 with O8, C2 with C6"; three that turn are "H5 to H6 to H7".
+ * The cycles of an exchange: "O7 with O8", "C2 with C6"; three that turn are "H5 to H6 to H7".
  *
  * @param atoms those that may be named, ascending; hydrogens that only follow their carbons are left out
  * @param permutation atom k of the first lies on atom permutation[k] of the second
@@ -66,7 +63,7 @@ export function exchangeWords(
   elements: ArrayLike<number>,
   atoms: ArrayLike<number>,
   permutation: ArrayLike<number>,
-): string {
+): string[] {
   const done = new Set<number>();
   const words: string[] = [];
   for (let k = 0; k < atoms.length; k++) {
@@ -77,6 +74,5 @@ export function exchangeWords(
     }
     if (cycle.length > 1) words.push(cycle.join(cycle.length === 2 ? " with " : " to "));
   }
-  const more = words.length - NAMED;
-  return more > 1 ? `${words.slice(0, NAMED).join(", ")} and ${more} more` : words.join(", ");
+  return words;
 }
