@@ -209,12 +209,9 @@ function Lines({
         />
       ) : null}
       {off ? (
-        <ChartText
-          x={besideLine(plot.x(off.tolerance) + 6, here ? plot.x(here.tolerance) : null)}
-          y={plot.top + 10}
-          halo
-        >
-          {`${formatCount(off.count)} at ${withUnit(toleranceText(off.tolerance), "Å")}`}
+        // The axis ends below the counts of the narrowest tolerances.
+        <ChartText x={plot.x(off.tolerance) + 6} y={plot.top + 10} halo>
+          {`↑ ${formatCount(off.count)} at ${withUnit(toleranceText(off.tolerance), "Å")}`}
         </ChartText>
       ) : null}
       {energyTolerance !== null && lines.length > 1 ? (
@@ -255,13 +252,6 @@ function Lines({
     </g>
   );
 }
-
-/** Pixels that "10,000 at 0.02 Å" takes. */
-const OFF_LABEL_PX = 104;
-
-/** Where a label begins that would lie across the line at hand: beside the line. */
-const besideLine = (x: number, line: number | null) =>
-  line !== null && line > x - 4 && line < x + OFF_LABEL_PX ? line + 9 : x;
 
 /** Pixels that "0.075 kcal/mol: 25" takes. */
 const END_LABEL_PX = 118;
