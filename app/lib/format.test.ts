@@ -17,7 +17,6 @@ import {
   formatPopulation,
   formatRaw,
   formatRmsd,
-  formatRmsdBeside,
   formatSeconds,
   formatTemperature,
   formulaParts,
@@ -26,6 +25,7 @@ import {
   rawValue,
   readNumber,
   readTyped,
+  rmsdsBeside,
   signed,
   trimmed,
   withUnit,
@@ -52,6 +52,27 @@ describe("numbers", () => {
     expect(withUnit("\u2013", "K")).toBe("\u2013");
   });
 
+  it.each([
+    [
+      [0.15, 0.34561],
+      ["0.150", "0.346"],
+    ],
+    [
+      [0.1502, 0.34561],
+      ["0.1502", "0.3456"],
+    ],
+    [
+      [0.14996, 0.1502, 0.15],
+      ["0.14996", "0.15020", "0.15000"],
+    ],
+    [
+      [0.1502, 0.0004, 0],
+      ["0.1502", "below 0.001", "0.0000"],
+    ],
+  ])("write a column beside its limit with the same decimals: %j", (values, texts) => {
+    expect(values.map(rmsdsBeside(values, 0.15))).toEqual(texts);
+  });
+
   it("carry the digits of each quantity", () => {
     expect(formatEnergy(0.3449)).toBe("0.34");
     expect(formatEnergy(1.44, "kJ/mol")).toBe("1.4");
@@ -60,10 +81,6 @@ describe("numbers", () => {
     expect(formatRmsd(0.34561)).toBe("0.346");
     expect(formatRmsd(0.0004)).toBe("below 0.001");
     expect(formatRmsd(0)).toBe("0.000");
-    expect(formatRmsdBeside(0.1502, 0.15)).toBe("0.1502");
-    expect(formatRmsdBeside(0.14996, 0.15)).toBe("0.14996");
-    expect(formatRmsdBeside(0.15, 0.15)).toBe("0.150");
-    expect(formatRmsdBeside(0.34561, 0.15)).toBe("0.346");
     expect(formatAngle(-153.6)).toBe("\u2212154");
     expect(formatTemperature(298.15)).toBe("298.15");
     expect(formatTemperature(300)).toBe("300");

@@ -71,16 +71,17 @@ export function formatRmsd(value: Maybe): string {
 }
 
 /**
- * RMSD in Å beside a limit: with as many more decimals as show on which side of it the value lies.
+ * How a column of RMSDs in Å is written beside a limit: all with as many decimals, and no more of them than show on
+ * which side of the limit each lies.
  *
- * @example formatRmsdBeside(0.1502, 0.15) // "0.1502"
+ * @example rmsdsBeside([0.1502, 0.3], 0.15)(0.3) // "0.3000"
  */
-export function formatRmsdBeside(value: number, limit: number): string {
-  for (let digits = 3; digits < 6; digits++) {
-    if (fixed(value, digits) !== fixed(limit, digits))
-      return digits === 3 ? formatRmsd(value) : fixed(value, digits);
-  }
-  return value === limit ? formatRmsd(value) : fixed(value, 6);
+export function rmsdsBeside(values: readonly number[], limit: number): (value: number) => string {
+  const told = (value: number, digits: number) =>
+    value === limit || fixed(value, digits) !== fixed(limit, digits);
+  let digits = 3;
+  while (digits < 6 && !values.every((value) => told(value, digits))) digits += 1;
+  return (value) => (digits === 3 || (value > 0 && value < 0.001) ? formatRmsd(value) : fixed(value, digits));
 }
 
 /** Any other distance in Å, 2 decimals. */

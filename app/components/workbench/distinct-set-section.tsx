@@ -184,10 +184,13 @@ export function DistinctSetSection() {
                 : "You read this team’s work: move the tolerances to see what they would keep. It is counted in this browser, and nothing is stored; an analyst or an owner can make that the set."}
             </p>
           )}
-          <WideTolerance />
-          <MirrorWarning />
+          <div className={fade} aria-busy={follows}>
+            <WideTolerance />
+            <MirrorWarning />
+          </div>
           <ToleranceBlock
             draft={draft}
+            stale={follows}
             failed={error !== null}
             onBack={ensemble.mayCompute ? null : back}
             onTake={

@@ -5,7 +5,7 @@ import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import type { NearnessAnswer } from "~/hooks/whole-ensemble-protocol";
 import type { NearPair } from "~/lib/align/nearness";
-import { formatEnergy, formatRmsd, formatRmsdBeside, plural, withUnit } from "~/lib/format";
+import { formatEnergy, formatRmsd, plural, rmsdsBeside, withUnit } from "~/lib/format";
 import { farthestRepeats, nearestOthers } from "~/lib/workbench/nearness";
 import { useWorkbench } from "./workbench-context";
 
@@ -21,6 +21,15 @@ export function NearestPairs({
 }) {
   const { rows, result, sift, roles } = useWorkbench();
   const under = useMemo(() => (result === null ? [] : farthestRepeats(result, SHOWN)), [result]);
+  const over = useMemo(() => (nearness?.over ?? []).slice(0, SHOWN).reverse(), [nearness]);
+  const rmsdText = useMemo(
+    () =>
+      rmsdsBeside(
+        [...over, ...under].map(({ rmsd }) => rmsd),
+        sift?.recipe.rmsdTolerance ?? 0,
+      ),
+    [over, under, sift?.recipe.rmsdTolerance],
+  );
   if (result === null || sift === null || rows.length < 2) return null;
   const apart = ({ a, b }: NearPair) => {
     const [x, y] = [rows[a]?.relativeEnergy, rows[b]?.relativeEnergy];
@@ -46,27 +55,30 @@ export function NearestPairs({
           </tr>
         </thead>
         <tbody>
-          {nearness?.over
-            .slice(0, SHOWN)
-            .reverse()
-            .map((pair) => (
-              <PairRow
-                key={`${pair.a} ${pair.b}`}
-                frames={[rows[pair.a]?.frame ?? 0, rows[pair.b]?.frame ?? 0]}
-                rmsd={pair.rmsd}
-                exact={pair.exact}
-                energy={apart(pair)}
-              >
-                {rows[pair.a]?.name} and {rows[pair.b]?.name}
-              </PairRow>
-            ))}
+          {over.map((pair) => (
+            <PairRow
+              key={`${pair.a} ${pair.b}`}
+              frames={[rows[pair.a]?.frame ?? 0, rows[pair.b]?.frame ?? 0]}
+              rmsd={rmsdText(pair.rmsd)}
+              exact={pair.exact}
+              energy={apart(pair)}
+            >
+              {rows[pair.a]?.name} and {rows[pair.b]?.name}
+            </PairRow>
+          ))}
           <tr>
             <td colSpan={3} className="border-b border-b-mark px-3 py-1 text-xs text-mark max-sm:px-2">
               kept apart above, merged below {withUnit(formatRmsd(sift.recipe.rmsdTolerance), "Å")}
             </td>
           </tr>
           {under.map(({ frame, repeats, rmsd, energyDifference }) => (
-            <PairRow key={frame} frames={[repeats, frame]} rmsd={rmsd} exact energy={energyDifference}>
+            <PairRow
+              key={frame}
+              frames={[repeats, frame]}
+              rmsd={rmsdText(rmsd)}
+              exact
+              energy={energyDifference}
+            >
               {name(repeats)} and frame {frame}
             </PairRow>
           ))}
@@ -92,12 +104,13 @@ function PairRow({
   children,
 }: {
   frames: [first: number, second: number];
-  rmsd: number;
+  /** As its column writes it. */
+  rmsd: string;
   exact: boolean;
   energy: number | null;
   children: ReactNode;
 }) {
-  const { layOver, selected, sift } = useWorkbench();
+  const { layOver, selected } = useWorkbench();
   const shown = selected.length === 2 && frames.every((frame) => selected.includes(frame));
   return (
     <Tr selected={shown}>
@@ -112,7 +125,7 @@ function PairRow({
       </Td>
       <Td align="right">
         {exact ? "" : "to "}
-        {sift === null ? formatRmsd(rmsd) : formatRmsdBeside(rmsd, sift.recipe.rmsdTolerance)}
+        {rmsd}
       </Td>
       <Td align="right">{formatEnergy(energy)}</Td>
     </Tr>

@@ -1,4 +1,4 @@
-import { useMemo } from "react";
+import { type ReactNode, useMemo } from "react";
 import { Button } from "~/components/ui/button";
 import { TextButton } from "~/components/ui/text-link";
 import { plateauKey, recipeKey, useWholeEnsemble, type WholeEnsemble } from "~/hooks/use-whole-ensemble";
@@ -35,11 +35,14 @@ function recipeOf(request: SiftRequest, ensemble: EnsembleView): SiftRecipe | nu
  */
 export function ToleranceBlock({
   draft,
+  stale,
   failed,
   onBack,
   onTake,
 }: {
   draft: SiftRequest | null;
+  /** The set is about to be another one: what stands here of it is greyed. */
+  stale: boolean;
   /** The set with these settings could not be made. */
   failed: boolean;
   /** Where the set does not follow the settings: back to those of the set that is shown. */
@@ -109,16 +112,29 @@ export function ToleranceBlock({
             <Waiting whole={whole} current={sift.current} />
           </PlateauPlace>
         )}
-        {histogram !== null ? (
-          <NearnessChart histogram={histogram} tolerance={live.rmsdTolerance} />
-        ) : (
-          <div className="min-w-0" />
-        )}
-        <NearestPairs nearness={nearness} progress={whole.progress} />
-        <NearestToSelected />
+        <OfTheSet stale={stale}>
+          {histogram !== null ? <NearnessChart histogram={histogram} tolerance={live.rmsdTolerance} /> : null}
+        </OfTheSet>
+        <OfTheSet stale={stale}>
+          <NearestPairs nearness={nearness} progress={whole.progress} />
+        </OfTheSet>
+        <OfTheSet stale={stale}>
+          <NearestToSelected />
+        </OfTheSet>
       </div>
-      <PairDistances />
+      <OfTheSet stale={stale}>
+        <PairDistances />
+      </OfTheSet>
     </>
+  );
+}
+
+/** What belongs to the set shown, and is left behind while the settings move. */
+function OfTheSet({ stale, children }: { stale: boolean; children: ReactNode }) {
+  return (
+    <div className={`min-w-0 transition-opacity ${stale ? "opacity-50" : ""}`} aria-busy={stale}>
+      {children}
+    </div>
   );
 }
 
