@@ -146,6 +146,20 @@ describe("a table", () => {
     expect(() => read("frame,a\n1,\0\n")).toThrow("NUL");
   });
 
+  it("says of a text that is a number but for its comma what it may be (row C14)", () => {
+    const said = (text: string, style: TableOptions["style"] = null) =>
+      planTable(read(text, { style }), METHANE, { ...NO_ANSWERS, style })
+        .messages.filter(({ code }) => code === "C14")
+        .map(({ line, found, hint }) => [line, found, hint?.split("?")[0]]);
+    const comma = "Decimal comma or thousands";
+    expect(said("frame;a;b\n1;1,25;1\n2;0.5;none yet\n", "point")).toEqual([
+      [2, "1,25", comma],
+      [3, "none yet", undefined],
+    ]);
+    expect(said("frame;d;a\n1;1,25 D;1\n2;1,5 D;2\n")).toEqual([[1, "1,25 D", comma]]);
+    expect(said("frame;a;b\n1;1,2 3,4;1\n")).toEqual([[1, undefined, undefined]]);
+  });
+
   it("reads a decimal comma and marks between thousands only as stated", () => {
     const values = (style: TableOptions["style"]) => {
       const table = read("frame;a;b\n1;1.234,5;1,234.5\n2;0,5;0.5\n", { style });

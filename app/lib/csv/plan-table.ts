@@ -1,5 +1,6 @@
 import type { ColumnData } from "../column-data.ts";
 import type { RawTable } from "../csv.server.ts";
+import { COMMA_HINT, isCommaNumber } from "../intake/comma-energy.ts";
 import type { EnergyColumn } from "../intake/energy-column.ts";
 import { energyRemarks } from "../intake/energy-remarks.ts";
 import { MessageList } from "../intake/message-list.ts";
@@ -131,6 +132,7 @@ function textMessages(draft: DraftColumn, file: string): IntakeMessage[] {
       column: draft.column,
       found,
       message: `Row ${row} has text in "${quoteFound(draft.name)}"; the value counts as missing.`,
+      ...(isCommaNumber(found) ? { hint: COMMA_HINT } : {}),
     }),
   );
   const more = textCount - texts.length;
@@ -219,6 +221,12 @@ function merged(questions: readonly IntakeQuestion[]): IntakeQuestion[] {
   return [...byId.values()];
 }
 
+/** What its first text is and what to do, where a column that is left out has numbers but for their comma. */
+function commaIn(table: RawTable, { column }: LeftOut): { found: string; hint: string } | undefined {
+  const text = table.columns[column - 2]?.texts.find(({ found }) => isCommaNumber(found));
+  return text && { found: text.found, hint: COMMA_HINT };
+}
+
 function nothingLeft(table: RawTable, leftOut: readonly LeftOut[]): IntakeRejection {
   const why = leftOut[0] === undefined ? "" : ` "${quoteFound(leftOut[0].header)}": ${leftOut[0].why}.`;
   return new IntakeRejection({
@@ -226,6 +234,7 @@ function nothingLeft(table: RawTable, leftOut: readonly LeftOut[]): IntakeReject
     file: table.file,
     message: `No column of the table holds numbers.${why}`,
     hint: `Its cells are separated by a ${DELIMITER_NAMES[table.delimiter]}; is that right?`,
+    ...(leftOut[0] && commaIn(table, leftOut[0])),
   });
 }
 
@@ -304,10 +313,18 @@ export function planTable(table: RawTable, facts: TableFacts, answers: TableAnsw
   const style = answers.style === null ? askStyle(table) : null;
   if (style) questions.unshift(style);
   if (!table.hasHeader && answers.header === null) questions.unshift(askHeader(table));
-  for (const { header, why } of leftOut) {
+  for (const left of leftOut) {
+    const { header, why } = left;
     if (why === CHOSEN) continue;
     const message = `"${quoteFound(header)}" was left out: ${why}.`;
-    list.add({ code: "C14", severity: "remark", file: table.file, line: 1, message });
+    list.add({
+      code: "C14",
+      severity: "remark",
+      file: table.file,
+      line: 1,
+      message,
+      ...commaIn(table, left),
+    });
   }
   const columns = drafts.map((draft): PlannedColumn => {
     const { raw, messages, questions: open, ...rest } = draft;

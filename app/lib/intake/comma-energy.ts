@@ -44,6 +44,22 @@ export function commaField(fields: SdfFields, wanted: Wanted = namesEnergy): str
   return null;
 }
 
+/** What to do about a number with a comma among properties: whose it is, only the user can say. */
+export const COMMA_HINT =
+  "Decimal comma or thousands? Write it with a point and nothing else, and send it again.";
+
+/**
+ * Whether a text is one number but for its comma, with or without a unit behind it: `1,25`, `1,25 Å`; several are none.
+ *
+ * @example isCommaNumber("1,25 D") // true
+ * @example isCommaNumber("1,2 3,4") // false
+ */
+export function isCommaNumber(text: string): boolean {
+  const [token = "", ...behind] = text.trim().split(/\s+/, 3);
+  if (token.length > 80 || token.endsWith(",") || readNumber(token).fault !== "decimal-comma") return false;
+  return behind.length === 0 || (behind.length === 1 && /^[^\d,.+-]/.test(behind[0] ?? ""));
+}
+
 /** Data fields of a file whose numbers have decimal commas, with points. */
 export function fieldsWithPoints(fields: SdfFields): SdfFields {
   return new Map([...fields].map(([name, values]) => [name, values.map(withDecimalPoints)]));

@@ -2,6 +2,7 @@ import { initialRule } from "../averages/rule.ts";
 import { inWords } from "../chem/chirality.ts";
 import type { ColumnData } from "../column-data.ts";
 import { quoteFound } from "../text/escape.ts";
+import { COMMA_HINT, isCommaNumber } from "./comma-energy.ts";
 import type { EnergyCandidate, EnergyFindings } from "./energies.ts";
 import type { EnergyColumn } from "./energy-column.ts";
 import { RESERVED_KEYS } from "./extended-comment.ts";
@@ -44,7 +45,7 @@ export function propertyColumns(
   const file = findings.rows[0]?.file ?? "";
   const messages = [
     renamedRemark(renamed, file),
-    textRemark(findings, options.extended, file),
+    ...textRemarks(findings, options.extended, file),
     beyondRemark(findings.beyond, options.extended, first.size, file),
   ].filter((message) => message !== null);
   return { columns: columns.sort(order), messages: [...messages, ...textCells(own, options)] };
@@ -116,23 +117,40 @@ function renamedRemark(renamed: readonly string[], file: string): IntakeMessage 
   return remark("C05", { file, message, hint: "A level of another name leaves the key its own." });
 }
 
-function textRemark(
+function textRemarks(
   { texts, unreadable }: Pick<EnergyFindings, "texts" | "unreadable">,
   extended: boolean,
   file: string,
-): IntakeMessage | null {
-  if (!extended) return null;
+): (IntakeMessage | null)[] {
+  if (!extended) return [];
   // What should be the energy is told with its frames.
   const own = texts.filter(
     ({ key }) => key.trim() !== "" && key !== unreadable?.key && !RESERVED_KEYS.has(key.toLowerCase()),
   );
-  if (own.length === 0) return null;
-  const names = own.slice(0, NAMED).map(({ key }) => `“${quoteFound(key)}”`);
-  const verb = own.length === 1 ? "holds" : "hold";
+  const comma = own.filter(({ found }) => isCommaNumber(found));
+  const text = own.filter((key) => !comma.includes(key));
+  return [
+    noColumn(text, "text or several numbers", file),
+    noColumn(comma, "numbers with a comma", file, COMMA_HINT),
+  ];
+}
+
+/** One remark on keys of which no column is made; null without any. */
+function noColumn(
+  keys: EnergyFindings["texts"],
+  what: string,
+  file: string,
+  hint?: string,
+): IntakeMessage | null {
+  const [first] = keys;
+  if (first === undefined) return null;
+  const names = keys.slice(0, NAMED).map(({ key }) => `“${quoteFound(key)}”`);
+  const verb = keys.length === 1 ? "holds" : "hold";
   return remark("C14", {
     file,
-    found: quoteFound(own[0]!.found),
-    message: `${listed(names, own.length)} ${verb} text or several numbers: kept with the frames, no column is made of it.`,
+    found: quoteFound(first.found),
+    message: `${listed(names, keys.length)} ${verb} ${what}: kept with the frames, no column is made of it.`,
+    ...(hint === undefined ? {} : { hint }),
   });
 }
 
@@ -156,19 +174,29 @@ function beyondRemark(
 
 /** Text in a column of numbers: that value is missing, told in one message a frame. */
 function textCells(own: readonly EnergyCandidate[], options: SettleOptions): IntakeMessage[] {
-  const byRow = new Map<number, string[]>();
+  const byRow = new Map<number, { words: string[]; comma: boolean }>();
   for (const { key, column } of own) {
     for (const [row, text] of column.problems) {
       if (!options.accepted(column.rows[row]!.frame)) continue;
-      byRow.set(row, [...(byRow.get(row) ?? []), `“${quoteFound(key ?? "")}” holds “${quoteFound(text)}”`]);
+      const told = byRow.get(row) ?? { words: [], comma: false };
+      byRow.set(row, {
+        words: [...told.words, `“${quoteFound(key ?? "")}” holds “${quoteFound(text)}”`],
+        comma: told.comma || isCommaNumber(text),
+      });
     }
   }
   const rows = own[0]?.column.rows ?? [];
   return [...byRow]
     .sort(([a], [b]) => a - b)
-    .map(([row, words]) => {
+    .map(([row, { words, comma }]) => {
       const { frame, file, line } = rows[row]!;
       const message = `${listed(words, words.length)}, which is no number: the value is missing there.`;
-      return remark("C14", { file, frame, line: line + 1, message });
+      return remark("C14", {
+        file,
+        frame,
+        line: line + 1,
+        message,
+        ...(comma ? { hint: COMMA_HINT } : {}),
+      });
     });
 }

@@ -78,6 +78,29 @@ describe("further keys of extended comments", () => {
     ]);
   });
 
+  it("with a comma are no text: it may be a decimal comma, and that is said", () => {
+    const { messages } = settle(['energy=-1.5 mu=1,25 axes="1,2 3,4"', 'energy=-1.4 mu=1,5 axes="1,2 3,4"']);
+    expect(
+      messages.flatMap(({ code, message, found, hint }) => (code === "C14" ? [[message, found, hint]] : [])),
+    ).toEqual([
+      [
+        "“axes” holds text or several numbers: kept with the frames, no column is made of it.",
+        "1,2 3,4",
+        undefined,
+      ],
+      [
+        "“mu” holds numbers with a comma: kept with the frames, no column is made of it.",
+        "1,25",
+        "Decimal comma or thousands? Write it with a point and nothing else, and send it again.",
+      ],
+    ]);
+    const some = settle(["energy=-1.5 mu=1,25", "energy=-1.4 mu=1.5"]).messages;
+    expect(some.find(({ code }) => code === "C14")).toMatchObject({
+      frame: 1,
+      hint: expect.stringContaining("Decimal comma"),
+    });
+  });
+
   it("with text in some frames leave the value missing there, in one message a frame", () => {
     const settled = settle([
       "energy=-1.5 mu=nan q=1,5",
