@@ -269,25 +269,35 @@ describe("a structure from outside", () => {
 
   it("without its hydrogens has no strain, whatever number it carries", async () => {
     const comment = firstFrame[1] ?? "";
-    await send(
-      "bare.xyz",
-      pose(comment, (line) => !/^\s*H/.test(line)),
-    );
-    const [found] = (await list()).slice(-1);
-    expect(found?.data.energy).not.toBeNull();
-    expect(found?.strain).toBeNull();
-    expect(await page()).toContain("the number is not that of this molecule");
+    const bare = pose(comment, (line) => !/^\s*H/.test(line));
+    const levelId = (await list()).find(({ strain }) => strain !== null)?.strain?.levelId ?? "";
+    for (const [fields, words] of [
+      [{}, /Its energy at MMFF94, −?[\d.]+\skcal\/mol as its file has it, was not used/],
+      [{ level: levelId, energy: "-35.5" }, /Its energy at MMFF94, −35\.5\skcal\/mol as typed, was not used/],
+    ] as const) {
+      // Said in the answer of the act and beside the structure.
+      expect(await (await send("bare.xyz", bare, fields)).text()).toMatch(words);
+      const [found] = (await list()).slice(-1);
+      expect(found?.data.energy).not.toBeNull();
+      expect(found?.strain).toBeNull();
+      expect((await page()).match(new RegExp(words, "g"))).toHaveLength(1);
+    }
+    // The second of a name is told apart wherever it is named.
+    const [first, second] = (await list()).slice(-2);
+    expect([first?.name, second?.name]).toEqual(["bare.xyz", "bare.xyz, 2"]);
+    expect(await (await asAnalyst(`/files/sifts/${siftId}/outside.csv`)).text()).toContain('"bare.xyz, 2"');
   });
 
   it.each([
     ["another molecule", "3\nwater\nO 0 0 0\nH 0.96 0 0\nH -0.24 0.93 0\n", {}, "another molecule"],
     ["nothing that can be read", "hello\nworld\n", {}, "hello.xyz"],
     ["an energy that is not there", pose("nothing here"), { level: "own" }, "Type it in kcal/mol"],
+    ["an energy without its level", pose("x"), { energy: "-35.5" }, "choose the level"],
     ["an energy that is no number", pose("x"), { level: "own", energy: "low" }, "is no number"],
   ] as const)("is refused in words: %s", async (_, content, asked, words) => {
     const before = (await list()).length;
     const level = (await list()).find(({ strain }) => strain !== null)?.strain?.levelId ?? "";
-    const fields = "level" in asked ? { ...asked, level } : {};
+    const fields = "level" in asked ? { ...asked, level } : asked;
     const answer = await send("hello.xyz", content, fields);
     expect(answer.status).toBe(422);
     expect(await answer.text()).toContain(words);

@@ -4,6 +4,7 @@ import { Button } from "~/components/ui/button";
 import { Field, frameClass, TextField } from "~/components/ui/field";
 import { Note } from "~/components/ui/note";
 import { SelectField } from "~/components/ui/select-field";
+import { showToast } from "~/components/ui/toast";
 import type { LevelView } from "~/lib/views";
 
 /** What the page's action answers. */
@@ -13,6 +14,8 @@ export interface OutsideAnswerToForm {
   /** Id of what was added, or brought back. */
   id?: string;
   name?: string;
+  /** Why the energy of what was added takes no part; null where it does, or where there is none. */
+  unused?: string | null;
   message?: string;
   fields?: Record<string, string>;
 }
@@ -39,6 +42,8 @@ export function AddStructure({
     if (data.ok && data.id) {
       form.current?.reset();
       setLevel("auto");
+      const added = `${data.name} lies beside the ensemble.`;
+      showToast({ tone: "done", text: data.unused ? `${added} ${data.unused}` : added });
       onAdded(data.id);
     }
   }, [data, onAdded]);
@@ -46,6 +51,11 @@ export function AddStructure({
   const answer = data ?? answered;
   const failed = answer && !answer.ok ? answer : null;
   const chosen = levels.find(({ id }) => id === level);
+  // Told where the fault is; below the fields only what none of them shows.
+  const { file, level: ofLevel, energy: ofEnergy } = failed?.fields ?? {};
+  const energyFault = chosen ? ofEnergy : undefined;
+  const levelFault = levels.length > 0 ? ofLevel : undefined;
+  const atField = file ?? levelFault ?? energyFault;
   return (
     <sending.Form
       ref={form}
@@ -54,8 +64,8 @@ export function AddStructure({
       className="grid max-w-read gap-4"
       aria-busy={busy}
     >
-      <Field id="outside-file" label="Crystal or bound pose, as XYZ or SDF" error={failed?.fields?.file}>
-        <div className={frameClass(Boolean(failed?.fields?.file))}>
+      <Field id="outside-file" label="Crystal or bound pose, as XYZ or SDF" error={file}>
+        <div className={frameClass(Boolean(file))}>
           <input
             id="outside-file"
             name="file"
@@ -72,6 +82,7 @@ export function AddStructure({
             label="Its energy"
             name="level"
             value={level}
+            error={levelFault}
             onChange={(event) => setLevel(event.currentTarget.value)}
             choices={[
               { value: "auto", label: "Where the ensemble’s own stand, if there" },
@@ -86,12 +97,12 @@ export function AddStructure({
               unit={chosen.unit}
               inputMode="decimal"
               autoComplete="off"
-              error={failed?.fields?.energy}
+              error={energyFault}
             />
           ) : null}
         </div>
       ) : null}
-      {failed ? (
+      {failed && atField === undefined ? (
         <Note tone="danger">
           <span role="alert">{failed.message}</span>
         </Note>

@@ -47,7 +47,7 @@ export function ComparisonReport(props: Props) {
   const { structure, near, over, labels, fits, otherConfiguration } = comparison;
   const { ensemble, rows, temperatureK } = useWorkbench();
   const [nearest = over] = near;
-  const { strain, why } = useStrain(comparison);
+  const { strain, carries, why } = useStrain(comparison);
   const torsions = fits.find(({ frame }) => frame === nearest.frame)?.torsions ?? [];
   const finding = outsideFinding(structure.name, near, { strain, near: choice.near, torsions, labels });
   const cost = nearest.population ? -thermalEnergyKcal(temperatureK) * Math.log(nearest.population) : null;
@@ -67,6 +67,11 @@ export function ComparisonReport(props: Props) {
           {remark}
         </p>
       ))}
+      {carries && strain === null ? (
+        <Note tone="remark" className="mt-4">
+          {why}
+        </Note>
+      ) : null}
       <KeyFigures>
         <KeyFigure
           label="Nearest"
@@ -123,7 +128,7 @@ export function ComparisonReport(props: Props) {
             strain={strain}
             note="One energy as it stands, compared with relaxed conformers: part of it is strain, part is that nobody relaxed it. Cost of choosing: −RT ln p, what it takes to hold the flask in that one conformer. The level’s own error is not in these figures."
           />
-        ) : (
+        ) : carries ? null : (
           <Note className="self-start">{why}</Note>
         )}
       </div>
@@ -145,22 +150,25 @@ export function ComparisonReport(props: Props) {
   );
 }
 
-/** kcal/mol at the level of the relative energies, or in words why it is not known. */
-function useStrain({ structure, otherConfiguration }: Comparison): { strain: number | null; why: string } {
+/** kcal/mol at the level of the relative energies, or in words why it is not known and whether an energy is left unused. */
+function useStrain({ structure, near, otherConfiguration }: Comparison): {
+  strain: number | null;
+  carries: boolean;
+  why: string;
+} {
   const { sift } = useWorkbench();
   const found = structure.strain;
-  if (found === null) return { strain: null, why: structure.withoutStrain ?? "" };
-  const carries = `It carries an energy at ${found.levelName}, ${withUnit(formatEnergy(found.kcal), "kcal/mol")} above the lowest there`;
+  if (found === null) {
+    return { strain: null, carries: structure.data.energy !== null, why: structure.withoutStrain ?? "" };
+  }
+  const number = `It carries an energy at ${found.levelName}, ${withUnit(formatEnergy(found.kcal), "kcal/mol")} above the lowest there`;
+  const without = (because: string) => ({ strain: null, carries: true, why: `${number}; ${because}.` });
   if (otherConfiguration.length > 0)
-    return {
-      strain: null,
-      why: `${carries}; it is that of another stereoisomer, so no strain is taken from it.`,
-    };
-  if (sift?.recipe.level == null)
-    return { strain: null, why: `${carries}; the set shown was sifted without energies.` };
-  if (found.levelId !== sift.recipe.level)
-    return { strain: null, why: `${carries}; the set shown is ordered by another level.` };
-  return { strain: found.kcal, why: "" };
+    return without("it is that of another stereoisomer, so no strain is taken from it");
+  if (sift?.recipe.level == null) return without("the set shown was sifted without energies");
+  if (found.levelId !== sift.recipe.level) return without("the set shown is ordered by another level");
+  if (near[0]?.relativeEnergy == null) return without("the nearest conformer has none to compare it with");
+  return { strain: found.kcal, carries: true, why: "" };
 }
 
 function Method({ comparison, strainLevel }: { comparison: Comparison; strainLevel: string | null }) {

@@ -35,8 +35,8 @@ export async function action({ request, params, context }: Route.ActionArgs) {
       const contentType = request.headers.get("content-type");
       if (/^multipart\/form-data\b/i.test(contentType ?? "")) {
         const form = openForm({ body: request.body, contentType });
-        const { id, name } = await addOutside({ actor, ensembleId, form });
-        return { ok: true, id, name } satisfies OutsideAnswerToForm;
+        const added = await addOutside({ actor, ensembleId, form });
+        return { ok: true, ...added } satisfies OutsideAnswerToForm;
       }
       const form = await readForm(request);
       const outsideId = String(form.get("outside") ?? "");

@@ -1,9 +1,11 @@
 import { and, count, eq, isNull } from "drizzle-orm";
-import { db, inTransaction } from "../../db/client.server.ts";
+import { db, inTransaction, type Queryable } from "../../db/client.server.ts";
 import { newId } from "../../db/new-id.server.ts";
 import { columns, ensembles, outsideStructures } from "../../db/schema.server.ts";
 import { DomainError } from "../../lib/errors.ts";
 import { mapOutside } from "../../lib/outside/map-outside.ts";
+import { nameApart } from "../../lib/outside/name-apart.ts";
+import { unusedEnergy } from "../../lib/outside/unused-energy.ts";
 import { escapeControls } from "../../lib/text/escape.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { unpackMolecule } from "../ensembles/molecule.server.ts";
@@ -20,6 +22,15 @@ const MOST_STRUCTURES = 100;
 
 function invalid(field: string, message: string): DomainError {
   return new DomainError("invalid", "The structure was not taken", message, { faults: [{ field, message }] });
+}
+
+/** What became of a structure that was sent. */
+export interface AddedOutside {
+  id: string;
+  /** As asked for, or told apart from others of that name. */
+  name: string;
+  /** In words, where its energy takes no part. */
+  unused: string | null;
 }
 
 /** Original bytes as they are read, bounded before anything is unpacked. */
@@ -41,7 +52,7 @@ async function* bounded(source: AsyncIterable<Uint8Array>): AsyncGenerator<Uint8
  * Lays a structure from outside beside an ensemble: one `file`, and the fields `name`, `level` ("auto", "none" or an id)
  * and `energy` as typed. It takes no part in any computation of the ensemble.
  *
- * @returns id of the structure
+ * @returns id and name of the structure, and what of it was not used
  * @throws DomainError invalid in words for another molecule, an unreadable file or an energy that is not there; conflict
  *   where there are too many structures
  */
@@ -49,7 +60,7 @@ export async function addOutside(options: {
   actor: Actor;
   ensembleId: string;
   form: FormReader;
-}): Promise<{ id: string; name: string }> {
+}): Promise<AddedOutside> {
   const grant = await accessEnsemble(options.actor, "compute", options.ensembleId);
   const { form } = options;
   const store = new FileStore(grant.teamId);
@@ -72,11 +83,12 @@ export async function addOutside(options: {
     }
     if (taken === null) throw invalid("file", "Choose a file: a crystal or bound pose as XYZ or SDF.");
     const { file } = taken;
-    const data = await dataOf(grant.ensembleId, taken.read, fields);
+    const { data, unused } = await dataOf(grant.ensembleId, taken.read, fields);
     const asked = fields.get("name")?.trim() ?? "";
-    const name = (asked === "" ? file : escapeControls(asked)).slice(0, 200);
+    const wanted = asked === "" ? file : escapeControls(asked);
     const id = newId();
-    await inTransaction(async (tx) => {
+    const name = await inTransaction(async (tx) => {
+      const name = nameApart(wanted, await namesTaken(tx, grant.ensembleId));
       const living = and(
         eq(outsideStructures.ensembleId, grant.ensembleId),
         isNull(outsideStructures.deletedAt),
@@ -97,9 +109,10 @@ export async function addOutside(options: {
         createdAt: new Date(),
       });
       await writeEntry(tx, grant, grant, { type: "outside-added", data: { name, file } });
+      return name;
     });
     await store.discard();
-    return { id, name };
+    return { id, name, unused };
   } catch (error) {
     await store.discard();
     await form.drain();
@@ -107,11 +120,21 @@ export async function addOutside(options: {
   }
 }
 
+/** Names of the structures beside an ensemble, those that can be brought back too; one structure is named at a time. */
+async function namesTaken(tx: Queryable, ensembleId: string): Promise<ReadonlySet<string>> {
+  await tx.select({ id: ensembles.id }).from(ensembles).where(eq(ensembles.id, ensembleId)).for("update");
+  const rows = await tx
+    .select({ name: outsideStructures.name })
+    .from(outsideStructures)
+    .where(eq(outsideStructures.ensembleId, ensembleId));
+  return new Set(rows.map(({ name }) => name));
+}
+
 async function dataOf(
   ensembleId: string,
   { frame, bonds, remarks }: ReadOutside,
   fields: ReadonlyMap<string, string>,
-): Promise<OutsideData> {
+): Promise<{ data: OutsideData; unused: string | null }> {
   const rows = await db
     .select({ atoms: ensembles.atoms, elements: ensembles.elements, bonds: ensembles.bonds })
     .from(ensembles)
@@ -129,7 +152,7 @@ async function dataOf(
     level: fields.get("level") ?? "auto",
     typed: fields.get("energy") ?? "",
   });
-  return {
+  const data: OutsideData = {
     elements: [...frame.elements],
     positions: [...frame.positions],
     bonds: [...bonds],
@@ -138,4 +161,9 @@ async function dataOf(
     remarks: [...remarks, ...mapping.remarks],
     energy,
   };
+  const unused = unusedEnergy(
+    data,
+    levels.find(({ id }) => id === energy?.levelId),
+  );
+  return { data, unused };
 }

@@ -2,6 +2,7 @@ import { and, asc, desc, eq, inArray, isNotNull, isNull } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { columns, ensembles, outsideStructures, sources } from "../../db/schema.server.ts";
 import { unpackColumn } from "../../lib/column-data.ts";
+import { unusedEnergy } from "../../lib/outside/unused-energy.ts";
 import { ENERGY_UNITS, kcalPer } from "../../lib/units.ts";
 import { acceptedFrames } from "../ensembles/accepted-frames.server.ts";
 import { type OutsideData, outsideDataSchema } from "./outside-data.ts";
@@ -70,6 +71,7 @@ export async function listOutside(ensembleId: string): Promise<OutsideView[]> {
 
 interface LowestEnergy {
   name: string;
+  unit: string;
   value: number;
   kcalPerUnit: number;
 }
@@ -98,7 +100,8 @@ async function lowestEnergies(ensembleId: string, levelIds: string[]): Promise<M
     for (const number of numbers) {
       if (present[number - 1] === 1) value = Math.min(value, values[number - 1] ?? value);
     }
-    if (Number.isFinite(value)) found.set(id, { name, value, kcalPerUnit: kcalPer(energyUnit) });
+    if (Number.isFinite(value))
+      found.set(id, { name, unit: energyUnit, value, kcalPerUnit: kcalPer(energyUnit) });
   }
   return found;
 }
@@ -113,12 +116,9 @@ function strainOf(
       "It carries no energy at a level of this ensemble, so its strain is not known. Where it has one, add it again and type it, or write it where the ensemble’s own stand.",
     );
   }
-  if (atoms !== "all") {
-    return without(
-      "Its energy is not compared: hydrogens are missing or differ, so the number is not that of this molecule.",
-    );
-  }
   const level = lowest.get(energy.levelId);
+  const unused = unusedEnergy({ atoms, energy }, level);
+  if (unused !== null) return without(unused);
   if (level === undefined) {
     return without(
       "It carries an energy at a level that the ensemble no longer has, so its strain is not known.",

@@ -37,6 +37,12 @@ export function outsideEnergy(
   levels: readonly EnergyLevel[],
   choice: EnergyChoice,
 ): OutsideData["energy"] {
+  if (choice.typed.trim() !== "" && /^(?:none|auto|)$/.test(choice.level)) {
+    throw refused(
+      "level",
+      "An energy was typed: choose the level at which it was computed, or leave it out.",
+    );
+  }
   if (choice.level === "none") return null;
   if (choice.level === "auto" || choice.level === "") {
     for (const level of levels) {

@@ -20,7 +20,9 @@ export interface ReadOutside {
 }
 
 function refused(file: string, message: string): DomainError {
-  return new DomainError("invalid", "The structure was not taken", message, { faults: [{ file, message }] });
+  return new DomainError("invalid", "The structure was not taken", message, {
+    faults: [{ field: "file", file, message }],
+  });
 }
 
 /**
