@@ -3,12 +3,15 @@ import { and, eq } from "drizzle-orm";
 import { beforeAll, describe, expect, it } from "vitest";
 import { db } from "~/db/client.server";
 import { ensembles, logbook } from "~/db/schema.server";
+import { symbolOf } from "~/lib/chem/elements";
 import type { Actor } from "~/services/auth/access.server";
 import { describeEnsemble } from "~/services/ensembles/describe-ensemble.server";
 import { loadIntake } from "~/services/ensembles/load-intake.server";
 import { loadSource } from "~/services/ensembles/load-source.server";
 import { splitOff } from "~/services/ensembles/split-off.server";
+import { mulberry } from "../factories/embed";
 import { record } from "../factories/mol";
+import { mirrored, molecule } from "../factories/molecule";
 import { makeMember } from "../factories/people";
 import { BUTANE, frame, makeLab, takenIn } from "../factories/upload";
 import { zipOf } from "../factories/zip";
@@ -89,6 +92,33 @@ describe("which of two configurations is the ensemble", () => {
     const { intake } = await describeEnsemble(lab.team.id, parent.id);
     expect(intake).toMatchObject({ accepted: 2, held: 1, questions: [] });
     expect(await entries(parent.id, "answer")).toMatchObject([{ data: { question: "configuration" } }]);
+  });
+});
+
+describe("held frames of one configuration whose equal atoms are exchanged", () => {
+  it("become one ensemble of all of them, in XYZ too", async () => {
+    const [rr, meso] = [molecule("F[C@H](Cl)[C@H](F)Cl"), molecule("F[C@H](Cl)[C@@H](F)Cl")];
+    const turned = { ...meso, positions: mirrored(meso.positions) };
+    const all = [rr, rr, rr, rr, rr, rr, rr, meso, meso, meso, turned, turned, turned];
+    const content = all
+      .map(({ graph, positions }, k) => {
+        const random = mulberry(k + 1);
+        const place = Array.from(positions, (x) => (x + 0.01 * (random() - 0.5)).toFixed(5));
+        const lines = [...graph.elements].map(
+          (z, a) => `${symbolOf(z)} ${place.slice(3 * a, 3 * a + 3).join(" ")}`,
+        );
+        return frame(`energy=-1.${k}`, lines);
+      })
+      .join("");
+    const parent = await takenIn(lab.token, [{ name: "meso.xyz", content }], fields);
+    expect(parent.intake).toMatchObject({ accepted: 7, held: 6 });
+    const made = await splitOff({ actor, ensembleId: parent.id, frame: 8 });
+    expect(made).toMatchObject({ created: true, frames: 6 });
+    const child = await describeEnsemble(lab.team.id, made.ensembleId);
+    expect(child.intake).toMatchObject({ frames: 6, accepted: 6, held: 0 });
+    expect((await loadIntake({ actor, ensembleId: parent.id })).became).toMatchObject([
+      { frames: [8, 9, 10, 11, 12, 13] },
+    ]);
   });
 });
 

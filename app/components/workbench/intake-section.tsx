@@ -6,7 +6,7 @@ import { Note } from "~/components/ui/note";
 import { TextLink } from "~/components/ui/text-link";
 import { capital, formatCount, formatTemperature, withUnit } from "~/lib/format";
 import type { EnergiesInForce, IntakeView } from "~/lib/views";
-import { intakeFinding } from "~/lib/workbench/findings";
+import { heldForOther, intakeFinding } from "~/lib/workbench/findings";
 import { ENERGY_KIND_WORDS } from "~/lib/workbench/recipe-words";
 import type { ActAnswer } from "./act-answer";
 import { AddBatch } from "./add-batch";
@@ -59,7 +59,7 @@ export function IntakeSection({ intake }: { intake: IntakeView }) {
           tone={ensemble.remarked > 0 ? "remark" : undefined}
         />
         <KeyFigure
-          label={asks && intake.waiting > 0 ? "Held for other reasons" : "Held"}
+          label={asks && heldForOther(intake) ? "Held for other reasons" : "Held"}
           value={formatCount(ensemble.held - (asks ? intake.waiting : 0))}
           tone={ensemble.held - (asks ? intake.waiting : 0) > 0 ? "held" : undefined}
         />

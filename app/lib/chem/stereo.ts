@@ -87,6 +87,9 @@ export function fromConfiguration(
   return { units, signs: Int8Array.from(signs) };
 }
 
+/** Turned patterns that are compared to find in what two configurations differ. */
+const MOST_TURNS = 300;
+
 /**
  * Compares configurations of one molecule: two are the same when some exchange of equivalent atoms carries the signs
  * of one onto those of the other. No group is enumerated.
@@ -162,6 +165,31 @@ export class ConfigurationComparer {
     return all;
   }
 
+  /**
+   * The smallest sets of units whose turning in `a` gives the configuration of `b`: several where equivalent atoms leave
+   * open which. They depend on the configuration of `b` alone, not on which of its equal patterns of signs it is.
+   *
+   * @returns sets of indices of units, in order; none where `MOST_TURNS` trials do not find any
+   * @example // 1,2-dichloro-1,2-difluoroethane, R,R and a meso frame
+   * comparer.turns([1, 1], [1, -1]) // [[0], [1]]
+   */
+  turns(a: ArrayLike<number>, b: ArrayLike<number>): number[][] {
+    const can = this.units.flatMap((_, u) => (a[u] === 0 || b[u] === 0 ? [] : [u]));
+    let trials = 0;
+    for (let size = 1; size <= can.length; size++) {
+      const found: number[][] = [];
+      for (const set of subsets(can, size)) {
+        trials += 1;
+        if (trials > MOST_TURNS) return [];
+        const signs = Int8Array.from(a);
+        for (const u of set) signs[u] = -signs[u]!;
+        if (this.same(signs, b)) found.push(set);
+      }
+      if (found.length > 0) return found;
+    }
+    return [];
+  }
+
   private search(a: ArrayLike<number>, b: ArrayLike<number>): Int32Array | null {
     // What is undefined on either side is tried both ways: seldom more than one or two units.
     const open = this.units.flatMap((_, u) => (a[u] === 0 || b[u] === 0 ? [u] : []));
@@ -188,6 +216,14 @@ export class ConfigurationComparer {
 
   private identity(): Int32Array {
     return Int32Array.from(this.graph.elements, (_, atom) => atom);
+  }
+}
+
+/** Sets of `size` of these, in order. */
+function* subsets(of: readonly number[], size: number, from = 0): Generator<number[], void, undefined> {
+  if (size === 0) yield [];
+  for (let k = from; size > 0 && k <= of.length - size; k++) {
+    for (const rest of subsets(of, size - 1, k + 1)) yield [of[k]!, ...rest];
   }
 }
 

@@ -30,8 +30,37 @@ export function configurationWords(
     const unit = units[u]!;
     if (unit.kind === "double-bond") parts.push(doubleBondWords(graph, unit, signs[u]!));
   }
-  const text = parts.join("; ");
-  return `${text.slice(0, 1).toUpperCase()}${text.slice(1)}.`;
+  return asSentence(parts.join("; "));
+}
+
+const asSentence = (text: string) => `${text.slice(0, 1).toUpperCase()}${text.slice(1)}.`;
+
+/** So many atoms are named of which any one may be the inverted one. */
+const MOST_ALTERNATIVES = 4;
+
+/**
+ * The difference of a configuration from the group's where equivalent atoms leave open which of them are turned.
+ *
+ * @param sets units that may be turned, each set with the signs that the group then has; at least one
+ * @example differenceWords(graph, units, [{ set: [0], turned }, { set: [1], turned: other }]) // "C1 or C2 is inverted."
+ */
+export function differenceWords(
+  graph: Graph,
+  units: readonly StereoUnit[],
+  sets: readonly { set: readonly number[]; turned: ArrayLike<number> }[],
+): string {
+  const [first] = sets;
+  if (first === undefined) return "";
+  const alone = configurationWords(graph, units, first.set, first.turned, false);
+  if (sets.length === 1) return alone;
+  const single = sets.flatMap(({ set }) => {
+    const unit = set.length === 1 ? units[set[0]!] : undefined;
+    return unit?.kind === "centre" ? [atomName(graph.elements, unit.atom)] : [];
+  });
+  if (single.length < sets.length || sets.length > MOST_ALTERNATIVES) {
+    return `${alone.replace(/\.$/, "")}, or the same at equivalent atoms.`;
+  }
+  return `${single.slice(0, -1).join(", ")} or ${single.at(-1)} is inverted.`;
 }
 
 /**

@@ -84,7 +84,7 @@ describe("several configurations of one molecule (row S23)", () => {
       id: "configuration",
       code: "S23",
       reason:
-        "Frame 1: C2 is S; elsewhere C2 is R. The one with most frames was taken; the others are held until you choose. Nothing is averaged across configurations.",
+        "Frame 1: C2 is S; elsewhere C2 is R. The one with most frames was taken and the others are held; those of the one you choose are used instead. Nothing is averaged across configurations.",
       options: [
         { id: "frame:2", text: "C2 is R", proposed: true },
         { id: "frame:1", text: "C2 is S", detail: "1 frame, the first is 1.", proposed: false },
@@ -151,6 +151,26 @@ describe("several configurations of one molecule (row S23)", () => {
     const again = added(all, new FrameClassifier({ group, map: true }));
     expect(states(again.finish({ configuration: "most" })).replaceAll("r", "a")).toBe("hhhaaaa");
     expect(states(again.finish({ configuration: 1 })).replaceAll("r", "a")).toBe("aaahhhh");
+  });
+});
+
+describe("one configuration whose equal atoms are exchanged", () => {
+  // One meso configuration, R,S and S,R by the numbers of its atoms, beside R,R.
+  const [rr, rs] = [molecule("F[C@H](Cl)[C@H](F)Cl"), molecule("F[C@H](Cl)[C@@H](F)Cl")];
+  const turned = { ...rs, positions: mirrored(rs.positions) };
+  const pair = () => added([rs, rs, rs, turned, turned, turned, rr]);
+
+  it("is held in the same words throughout, so that all its frames go together", () => {
+    const chosen = pair().finish({ configuration: 7 });
+    expect(states(chosen)).toBe("hhhhhha");
+    expect(chosen.configurations.map(({ frames }) => frames)).toEqual([1, 6]);
+    const said = chosen.frames.slice(0, 6).map(({ messages }) => messages[0]?.message);
+    expect(new Set(said)).toEqual(new Set(["C2 or C5 is inverted."]));
+    // Nothing is lost where the meso one is the ensemble.
+    expect(states(pair().finish())).toBe("aaaaaah");
+    // A further batch that holds the other half of it says the same.
+    const batch = added([turned], new FrameClassifier({ group: chosen.group })).finish();
+    expect(batch.frames[0]?.messages[0]?.message).toBe("C2 or C5 is inverted.");
   });
 });
 

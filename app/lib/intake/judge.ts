@@ -4,7 +4,7 @@ import { graphSignature, isomorphism } from "../chem/signature.ts";
 import { ConfigurationComparer, fromConfiguration, toConfiguration } from "../chem/stereo.ts";
 import { type Graph, makeGraph } from "../structure.ts";
 import { describeChange } from "./bond-changes.ts";
-import { configurationWords } from "./configuration-words.ts";
+import { configurationWords, differenceWords } from "./configuration-words.ts";
 import {
   type ConfigurationChoice,
   type ConfigurationClass,
@@ -44,6 +44,8 @@ export class FrameJudge {
   private readonly sameMolecule = new Remembered((kind: BondKind) => this.isSameMolecule(kind));
   private readonly bondWords = new Remembered((kind: BondKind) => this.otherBonds(kind, null));
   private readonly handWords = new Remembered((hands: Hands) => this.otherHands(hands));
+  /** The pattern that stands for the configuration of a frame's hands. */
+  private readonly classSigns = new Map<Hands, Int8Array>();
   private exactTests = 0;
 
   constructor(
@@ -200,7 +202,7 @@ export class FrameJudge {
   }
 
   private otherHands(hands: Hands): Finding | null {
-    const signs = this.remarks.signsOf(hands);
+    const signs = this.classSigns.get(hands) ?? this.remarks.signsOf(hands);
     if (this.comparer.same(this.signs, signs)) return null;
     const { units, message } = this.differenceOf(signs);
     return { code: "X40", reason: "other-configuration", message, hint: this.hintFor(units) };
@@ -214,10 +216,19 @@ export class FrameJudge {
     const different = isMirror
       ? this.units.flatMap((unit, u) => (unit.kind === "centre" && signs[u] !== 0 ? [u] : []))
       : this.comparer.difference(this.signs, signs);
-    return {
-      units: different,
-      message: configurationWords(this.graph, this.units, different, signs, isMirror),
-    };
+    if (isMirror) {
+      return {
+        units: different,
+        message: configurationWords(this.graph, this.units, different, signs, true),
+      };
+    }
+    // Frames of one configuration are told in the same words, whichever of equivalent atoms is the turned one in each.
+    const sets = this.comparer.turns(this.signs, signs);
+    const words = (sets.length > 0 ? sets : [different]).map((set) => {
+      const turned = sets.length > 0 ? this.signs.map((sign, u) => (set.includes(u) ? -sign : sign)) : signs;
+      return { set, turned };
+    });
+    return { units: different, message: differenceWords(this.graph, this.units, words) };
   }
 
   /** The configurations in which the frames hold the group's molecule, its own first. */
@@ -231,7 +242,13 @@ export class FrameJudge {
       else frames.set(hands, [record.frame]);
     }
     const found = [...frames].map(([hands, own]) => ({ signs: this.remarks.signsOf(hands), frames: own }));
-    return configurationClasses(this.comparer, this.signs, found);
+    const classes = configurationClasses(this.comparer, this.signs, found);
+    const signsOf = new Map(classes.flatMap((one) => one.frames.map((frame) => [frame, one.signs] as const)));
+    for (const [hands, [first]] of frames) {
+      const signs = signsOf.get(first ?? 0);
+      if (signs) this.classSigns.set(hands, signs);
+    }
+    return classes;
   }
 
   /** The same as a choice; none where there is but one. */

@@ -164,7 +164,7 @@ export function groupQuestion(molecules: readonly MoleculeChoice[], inSdf: boole
     code: inSdf ? "S21" : "X12",
     text: "Which molecule is the ensemble?",
     reason:
-      "The files hold several. The one with most frames was taken; the others are held until you choose.",
+      "The files hold several. The one with most frames was taken and the others are held; those of the one you choose are used instead.",
     options: molecules.map(({ frame, frames, formula, charge, difference, proposed }) => ({
       id: `frame:${frame}`,
       text: `${formula}${charged(charge)}${difference === null ? "" : ` (${difference})`}`,
@@ -183,7 +183,7 @@ export function configurationQuestion(configurations: readonly ConfigurationChoi
     id: "configuration",
     code: ASK_CODES.configuration,
     text: "Which configuration is the ensemble?",
-    reason: `${differing.join(". ")}; elsewhere ${lowerFirst(taken?.words ?? "")}. The one ${most ? "with most frames" : "that comes first"} was taken; the others are held until you choose. Nothing is averaged across configurations.`,
+    reason: `${differing.join(". ")}; elsewhere ${lowerFirst(taken?.words ?? "")}. The one ${most ? "with most frames" : "that comes first"} was taken and the others are held; those of the one you choose are used instead. Nothing is averaged across configurations.`,
     options: configurations.map(({ first, frames, words }, k) => ({
       id: `frame:${first[0]}`,
       text: words,

@@ -314,6 +314,12 @@ describe("findings in words", () => {
     expect(intakeFinding(chosen, quiet).text).toBe(
       "400 frames read: 397 are accepted already and 3 are held. One question is open; what is accepted is used meanwhile.",
     );
+    // What is held while it is open which configuration is the ensemble is held for that, not for other reasons.
+    const choice = { id: "configuration", code: "S23", text: "Which configuration?", options: [] };
+    const unit2 = { id: "energy-unit", code: "E01", text: "Which unit?", options: [] };
+    expect(intakeFinding(open, { ...quiet, waiting: 397, questions: [unit2, choice] }).text).toContain(
+      "397 can be accepted and 3 are held. Two questions",
+    );
     const whole = { ...weighed, accepted: 400, remarked: 0, held: 0 };
     expect(intakeFinding(whole, quiet).text).toBe("400 frames read: all are accepted.");
     const unit = { id: "u", code: "energy-from", text: "Which number is the energy?", options: [] };

@@ -13,6 +13,7 @@ import {
   withUnit,
 } from "../format.ts";
 import { WIDE_KCAL } from "../intake/energy-remarks.ts";
+import { isEnsembleAsk } from "../intake/reading-choices.ts";
 import { readAskId } from "../intake/reading-questions.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
 import { spreadWarning } from "../intake/whole-spread.ts";
@@ -253,6 +254,17 @@ export function spreadCaution(rows: readonly ConformerRow[], level: LevelView | 
 }
 
 /**
+ * Whether what is held beside the frames that wait is held for reasons of its own: where it is open which molecule or
+ * configuration the ensemble is, that question may be about these.
+ */
+export function heldForOther({ waiting, questions }: Pick<IntakeView, "waiting" | "questions">): boolean {
+  const chooses = questions.some(
+    ({ id, answered }) => answered === undefined && isEnsembleAsk(readAskId(id)?.ask),
+  );
+  return waiting > 0 && !chooses;
+}
+
+/**
  * What intake says first.
  *
  * @param intake frames held for nothing but an open question, the questions, and what was said of the files
@@ -274,7 +286,7 @@ export function intakeFinding(
       waiting > 0 ? `${formatCount(waiting)} can be accepted` : null,
       accepted > 0 ? `${formatCount(accepted)} ${accepted === 1 ? "is" : "are"} accepted already` : null,
       other > 0
-        ? `${formatCount(other)} ${other === 1 ? "is" : "are"} held${waiting > 0 ? " for other reasons" : ""}`
+        ? `${formatCount(other)} ${other === 1 ? "is" : "are"} held${heldForOther(intake) ? " for other reasons" : ""}`
         : null,
     ].filter((part) => part !== null);
     if (accepted > 0) {

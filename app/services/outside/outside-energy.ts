@@ -67,10 +67,10 @@ export function outsideEnergy(
   }
   const found = numberAt(frame, level) ?? bareNumber(frame, level);
   if (found) return found;
-  const where = isSdfFrame(frame) ? "data fields" : "comment line";
+  const where = isSdfFrame(frame) ? "data fields of the file have" : "comment line of the file has";
   throw refused(
     "energy",
-    `The ${where} of the file has no energy where those of ${level.name} stand (${level.origin ?? "nowhere"}). Type it in ${level.unit}, or take the structure without an energy.`,
+    `The ${where} no energy where those of ${level.name} stand (${level.origin ?? "nowhere"}). Type it in ${level.unit}, or take the structure without an energy.`,
   );
 }
 
