@@ -9,7 +9,9 @@ import { SelectField } from "~/components/ui/select-field";
 import type { ActAnswer } from "~/components/workbench/act-answer";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { GENERAL_SET, GENERAL_SOURCE, KARPLUS_SETS, OWN_SET } from "~/lib/averages/karplus";
-import { whyNotGeneral } from "~/lib/averages/observable";
+import { firstUnbonded, takesPhi, whyNotGeneral } from "~/lib/averages/observable";
+import { couplingWords } from "~/lib/averages/observable-words";
+import { atomName } from "~/lib/chem/elements";
 import { measureLabel } from "~/lib/measure/measure";
 import { makeGraph } from "~/lib/structure";
 
@@ -25,8 +27,18 @@ export function PickColumn() {
   const [set, setSet] = useState<string | null>(null);
   const chosenSet = set ?? (general === null ? GENERAL_SET : (KARPLUS_SETS[0]?.id ?? OWN_SET));
   if (!ensemble.mayCompute) return null;
+  const open = picked.length === 4 ? firstUnbonded(graph, picked) : null;
+  const ofFour = open === null ? four : "torsion";
   const kind =
-    picked.length === 2 ? "distance" : picked.length === 3 ? "angle" : picked.length === 4 ? four : null;
+    picked.length === 2 ? "distance" : picked.length === 3 ? "angle" : picked.length === 4 ? ofFour : null;
+  const words =
+    kind === "coupling" && chosenSet !== OWN_SET
+      ? couplingWords(graph, picked, {
+          set: chosenSet,
+          own: null,
+          ...(takesPhi(chosenSet, graph, picked) ? { angle: "phi" as const } : {}),
+        })
+      : null;
   const label = measureLabel(ensemble.elements, picked);
   return (
     <section className="mt-9 print:hidden" aria-labelledby="pick-column">
@@ -46,13 +58,21 @@ export function PickColumn() {
               <>
                 <sup>3</sup>J
               </>
-            ) : (
+            ) : open === null ? (
               kind.charAt(0).toUpperCase() + kind.slice(1)
+            ) : (
+              "Angle between planes"
             )}{" "}
             {label}
           </p>
+          {open === null ? null : (
+            <p className="max-w-read text-ink-2">
+              {open.map((atom) => atomName(ensemble.elements, atom)).join("–")} not bonded: an angle between
+              planes, no torsion of a bond, and no coupling over three bonds.
+            </p>
+          )}
           <div className="mt-3 flex flex-wrap items-end gap-4">
-            {picked.length === 4 ? (
+            {picked.length === 4 && open === null ? (
               <Segments
                 label="As"
                 value={four}
@@ -114,6 +134,11 @@ export function PickColumn() {
               />
             ) : null}
           </div>
+          {words === null ? null : (
+            <p className="mt-3 max-w-read text-xs text-ink-2">
+              {words.formula}. {words.angle}
+            </p>
+          )}
           {kind === "coupling" && chosenSet === OWN_SET ? (
             <div className="mt-3 flex flex-wrap gap-3">
               {(["a", "b", "c"] as const).map((name) => (

@@ -1,4 +1,5 @@
 import { Download } from "lucide-react";
+import { useMemo } from "react";
 import { href } from "react-router";
 import { saveText } from "~/components/charts/export-figure";
 import { Badge } from "~/components/ui/badge";
@@ -9,7 +10,7 @@ import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import type { Average } from "~/lib/averages/average";
 import { fromDefinition } from "~/lib/averages/observable";
-import { observableWords } from "~/lib/averages/observable-words";
+import { couplingWords, observableWords } from "~/lib/averages/observable-words";
 import type { PropertyValues } from "~/lib/averages/property-set";
 import { shownAveragesCsv } from "~/lib/averages/shown-csv";
 import { digitsFor } from "~/lib/averages/words";
@@ -22,6 +23,7 @@ import {
   formatTemperature,
   withUnit,
 } from "~/lib/format";
+import { makeGraph } from "~/lib/structure";
 import { RuleName } from "./rule-name";
 import type { Averaged, AveragedProperty } from "./use-averages";
 import type { WeighedConformers } from "./use-weighed";
@@ -191,6 +193,7 @@ function PropertyRow({
   onChoose: (id: string) => void;
 }) {
   const { property, average, moments } = one;
+  const coupling = useCoupling(property);
   const digits = digitsFor(property.unit, average.value);
   const bothHands = moments.mirrored.some((flag) => flag === 1);
   const rule = (
@@ -230,8 +233,22 @@ function PropertyRow({
               name={property.name}
               value={fixed(at.value, digits)}
               unit={property.unit ?? undefined}
-              formula={<Formula rule={moments.rule} />}
+              formula={
+                coupling === null ? (
+                  <Formula rule={moments.rule} />
+                ) : (
+                  <>
+                    <Formula rule={moments.rule} />, {coupling.formula}
+                  </>
+                )
+              }
               inputs={[
+                ...(coupling === null
+                  ? []
+                  : [
+                      { label: "angle", value: coupling.angle },
+                      { label: "source", value: coupling.source },
+                    ]),
                 { label: "conformers", value: formatCount(weighed.kept.length) },
                 { label: "weighed by", value: `${weighed.level.name}, ${weighed.weights.kind}` },
                 { label: "temperature", value: withUnit(formatTemperature(averaged.temperatures[k]), "K") },
@@ -293,6 +310,20 @@ export function Covered({ covered, refused }: { covered: Average["covered"]; ref
   const figure = formatPopulation(covered);
   if (refused) return <Badge>{figure}, not averaged</Badge>;
   return covered < 1 ? <Badge>{figure}</Badge> : figure;
+}
+
+/** Of a coupling: formula, source and what its angle is. */
+function useCoupling(property: PropertyValues) {
+  const { elements, bonds } = useWorkbench().ensemble;
+  return useMemo(() => {
+    const path = property.definition?.atoms[0];
+    if (property.definition?.observable !== "coupling" || path === undefined) return null;
+    return couplingWords(
+      makeGraph(Uint8Array.from(elements), Int32Array.from(bonds)),
+      path.map((atom) => atom - 1),
+      fromDefinition(property.definition, property.rule),
+    );
+  }, [property.definition, property.rule, elements, bonds]);
 }
 
 function originWords(property: PropertyValues): string {

@@ -50,10 +50,12 @@ export function AveragesText() {
         H–N–C–H{" "}
         {KARPLUS_SETS.map((set) => (
           <Cite key={set.id}>{set.source}</Cite>
-        ))}
-        ; for H–C–C–H with substituents the general set of <Cite>Tetrahedron 1980, 36, 2783</Cite>, with what
-        the substituents carry themselves taken into account. Electronegativities of C and O are those of the
-        set, the others from memory. J is averaged, never the angle.
+        ))}{" "}
+        with t = φ − 60°, φ the torsion C–N–C–C of the residue (φ + 60° where the hydrogen stands on the other
+        side, as in a D residue; the picked torsion where there is no such chain); for H–C–C–H with
+        substituents the general set of <Cite>Tetrahedron 1980, 36, 2783</Cite>, with what the substituents
+        carry themselves taken into account. Electronegativities of C and O are those of the set, the others
+        from memory. J is averaged, never the angle.
       </p>
       <p>
         Shieldings become shifts by linear scaling, δ = (intercept − σ)/(−slope){" "}

@@ -5,7 +5,7 @@
 
 const RAD = Math.PI / 180;
 
-/** A parameter set of J = A cos^2 t + B cos t + C, in Hz, t the torsion between the coupled nuclei. */
+/** A parameter set of J = A cos^2 t + B cos t + C, in Hz, t the torsion between the coupled nuclei or what stands for it. */
 export interface KarplusSet {
   id: string;
   /** For people; the source behind it. */
@@ -16,7 +16,7 @@ export interface KarplusSet {
   c: number;
 }
 
-/** Published sets for 3J(HN-HA) of peptides; t = H-N-CA-HA, which for L residues is phi - 60 degrees. */
+/** Published sets for 3J(HN-HA) of peptides; t = phi - 60 degrees for an L residue (`peptide.ts`). */
 export const KARPLUS_SETS: readonly KarplusSet[] = [
   {
     id: "hn-ha-1993",

@@ -11,6 +11,7 @@ import {
   OWN_SET,
   type Substituent,
 } from "./karplus.ts";
+import { peptideAngle, peptideChain } from "./peptide.ts";
 import type { AverageRule } from "./rule.ts";
 
 export type ObservableKind = "distance" | "angle" | "torsion" | "coupling";
@@ -24,6 +25,11 @@ export interface Observable {
   /** Of a coupling: id of a parameter set, or "own" with A, B, C. */
   set: string | null;
   own: { a: number; b: number; c: number } | null;
+  /**
+   * Of a coupling by a peptide set: "phi" takes t = phi - 60 degrees of the residue, else t is the picked torsion.
+   * Columns of before this was told apart, and atoms without such a chain, keep the picked torsion.
+   */
+  angle?: "phi";
 }
 
 export const OBSERVABLE_UNIT: Record<ObservableKind, string> = {
@@ -50,24 +56,49 @@ export interface ObservableDefinition {
 }
 
 export function toDefinition(observable: Observable): ObservableDefinition {
-  const { kind, tuples, rule, set, own } = observable;
+  const { kind, tuples, rule, set, own, angle: from } = observable;
   return {
     type: "observable",
     observable: kind,
     atoms: tuples.map((tuple) => tuple.map((atom) => atom + 1)),
-    parameters: { rule, ...(set === null ? {} : { set }), ...(own ?? {}) },
+    parameters: {
+      rule,
+      ...(set === null ? {} : { set }),
+      ...(own ?? {}),
+      ...(from === undefined ? {} : { angle: from }),
+    },
   };
 }
 
 export function fromDefinition(definition: ObservableDefinition, rule: AverageRule): Observable {
-  const { a, b, c, set } = definition.parameters;
+  const { a, b, c, set, angle: from } = definition.parameters;
   return {
     kind: definition.observable,
     tuples: definition.atoms.map((tuple) => tuple.map((atom) => atom - 1)),
     rule,
     set: typeof set === "string" ? set : null,
     own: typeof a === "number" && typeof b === "number" && typeof c === "number" ? { a, b, c } : null,
+    ...(from === "phi" ? { angle: from } : {}),
   };
+}
+
+/** Whether a set is one of those for 3J(HN-HA), and these atoms stand in the chain that gives its phi. */
+export function takesPhi(set: string | null, graph: Graph, path: readonly number[]): boolean {
+  return KARPLUS_SETS.some((one) => one.id === set) && peptideChain(graph, path) !== null;
+}
+
+/**
+ * The first two atoms, one after the other in a pick, that no bond joins.
+ *
+ * @returns null where the atoms are bonded in a row
+ * @example firstUnbonded(butane, [0, 1, 2, 5]) // [2, 5]
+ */
+export function firstUnbonded(graph: Graph, path: readonly number[]): [number, number] | null {
+  for (const [k, atom] of path.entries()) {
+    const next = path[k + 1];
+    if (next !== undefined && !neighboursOf(graph, atom).includes(next)) return [atom, next];
+  }
+  return null;
 }
 
 /**
@@ -175,7 +206,8 @@ function tupleValue(
     case "torsion":
       return torsion(positions, i, j, k, l);
     case "coupling": {
-      const turned = torsion(positions, i, j, k, l);
+      const chain = observable.angle === "phi" ? peptideChain(graph, atoms) : null;
+      const turned = chain === null ? torsion(positions, i, j, k, l) : peptideAngle(positions, chain);
       return turned === null ? null : couplingOf(observable, graph, positions, atoms, turned);
     }
   }

@@ -2,14 +2,17 @@ import { z } from "zod";
 import { inTransaction } from "../../db/client.server.ts";
 import { GENERAL_SET, KARPLUS_SETS, OWN_SET } from "../../lib/averages/karplus.ts";
 import {
+  firstUnbonded,
   OBSERVABLE_ATOMS,
   OBSERVABLE_UNIT,
   type Observable,
+  takesPhi,
   toDefinition,
   whyNotGeneral,
 } from "../../lib/averages/observable.ts";
 import { observableName } from "../../lib/averages/observable-words.ts";
 import type { ParityGroup } from "../../lib/averages/parity-group.ts";
+import { atomName } from "../../lib/chem/elements.ts";
 import { DomainError } from "../../lib/errors.ts";
 import type { Graph } from "../../lib/structure.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
@@ -65,6 +68,14 @@ function checkSet(request: ObservableRequest, graph: Graph, path: readonly numbe
   if (request.set === OWN_SET && request.own === undefined) {
     throw refused("own", "Give A, B and C of J = A cos²t + B cos t + C, in Hz.");
   }
+  const open = firstUnbonded(graph, path);
+  if (open !== null) {
+    const names = open.map((atom) => atomName(graph.elements, atom)).join(" and ");
+    throw refused(
+      "atoms",
+      `A coupling over three bonds takes four atoms bonded in a row; ${names} are not bonded.`,
+    );
+  }
   const why = request.set === GENERAL_SET ? whyNotGeneral(graph, path) : null;
   if (why !== null) throw refused("set", `The general H–C–C–H set does not fit these atoms. ${why}`);
 }
@@ -111,6 +122,9 @@ export async function addObservable(options: {
     rule: ruleFor(request),
     set: request.observable === "coupling" ? (request.set ?? null) : null,
     own: request.set === OWN_SET ? (request.own ?? null) : null,
+    ...(request.observable === "coupling" && takesPhi(request.set ?? null, graph, path)
+      ? { angle: "phi" as const }
+      : {}),
   };
   const name = request.name ?? observableName(observable, graph.elements);
   const at = { teamId: grant.teamId, ensembleId: grant.ensembleId, userId: grant.userId };
