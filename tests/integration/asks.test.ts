@@ -424,6 +424,10 @@ describe("X12 and S21, several molecules", () => {
     });
     await answer(taken.id, { group: "frame:4" });
     expect(await ensemble(taken.id)).toMatchObject({ formula: "CH4", intake: { accepted: 1, held: 3 } });
+    // The molecule too can be answered anew.
+    const anew = { answers: [{ id: "group", option: "frame:1" }] };
+    expect((await post(token, `/ensembles/${taken.id}/reread`, anew)).status).toBe(200);
+    expect(await ensemble(taken.id)).toMatchObject({ formula: "H2O", intake: { accepted: 3, held: 1 } });
   });
 });
 
@@ -491,7 +495,37 @@ describe("S23, several configurations", () => {
     expect((await reread(taken.id, "kJ/mol")).intake).toMatchObject({ accepted: 4, held: 1, questions: [] });
     // Another answer now would be another ensemble.
     const other = { answers: [{ id: "configuration", option: "frame:3" }] };
-    expect((await post(token, `/ensembles/${taken.id}/answers`, other)).status).toBe(409);
+    const refused = await post(token, `/ensembles/${taken.id}/answers`, other);
+    expect(refused.status).toBe(409);
+    expect((await refused.json()).detail).toContain(`/api/v1/ensembles/${taken.id}/reread`);
+  });
+
+  it("is answered anew, or asked again, with a reading that says so", async () => {
+    const taken = await take(40);
+    await answer(taken.id, { configuration: "frame:3" });
+    const anew = async (option: string) => {
+      const asked = { ...fields, energyFrom: "field:E", answers: [{ id: "configuration", option }] };
+      const again = await post(token, `/ensembles/${taken.id}/reread`, asked);
+      return { status: again.status, now: await ensemble(taken.id) };
+    };
+    const changed = await anew("frame:1");
+    expect(changed.status).toBe(200);
+    expect(changed.now.intake).toMatchObject({ accepted: 4, held: 1, questions: [] });
+    expect(heldOf(changed.now)).toEqual([3]);
+    // It is kept like a first answer, and every answer stands in the logbook.
+    expect((await reread(taken.id, "kJ/mol")).intake).toMatchObject({ accepted: 4, questions: [] });
+    const entries = await db
+      .select({ data: logbook.data })
+      .from(logbook)
+      .where(and(eq(logbook.ensembleId, taken.id), eq(logbook.type, "answer")))
+      .orderBy(asc(logbook.id));
+    expect(entries).toMatchObject([{ data: { option: "frame:3" } }, { data: { option: "frame:1" } }]);
+    const open = await anew("ask");
+    expect(open.now.intake).toMatchObject({ accepted: 4, held: 1, questions: [{ id: "configuration" }] });
+    expect(await answer(taken.id, { configuration: "frame:3" })).toMatchObject({ accepted: 1, held: 4 });
+    expect((await anew("frame:2")).status).toBe(422);
+    const energies = { ...fields, answers: [{ id: "energy-unit", option: "eV" }] };
+    expect((await post(token, `/ensembles/${taken.id}/reread`, energies)).status).toBe(422);
   });
 
   it("waits for nobody, and a frame of XYZ is held without a question (X40)", async () => {

@@ -5,6 +5,7 @@ import { TextField } from "~/components/ui/field";
 import { SelectField } from "~/components/ui/select-field";
 import { showToast } from "~/components/ui/toast";
 import { capital, MINUS } from "~/lib/format";
+import { readAskId } from "~/lib/intake/reading-questions";
 import { ENERGY_UNITS } from "~/lib/units";
 import type { IntakeView } from "~/lib/views";
 import { inPageWords } from "~/lib/workbench/page-words";
@@ -21,6 +22,9 @@ const KINDS = [
   { value: "", label: "not stated, taken as electronic" },
   ...Object.entries(ENERGY_KIND_WORDS).map(([value, words]) => ({ value, label: capital(words) })),
 ];
+
+/** Fields that answer what intake asked of the files begin so, then comes the question's id. */
+export const REREAD_ANSWER = "answer:";
 
 /** A wrong number, unit or level is put right: the stored files are read again with other answers. */
 export function ReadAgain({ intake }: { intake: IntakeView }) {
@@ -114,6 +118,20 @@ function AnswerFields({ intake }: { intake: IntakeView }) {
         value={kind}
         onChange={(event) => setKind(event.currentTarget.value)}
       />
+      {intake.questions
+        .filter(({ id, answered }) => answered !== undefined && readAskId(id) !== null)
+        .map(({ id, text, options, answered }) => (
+          <SelectField
+            key={id}
+            label={text}
+            name={`${REREAD_ANSWER}${id}`}
+            choices={[
+              { value: "", label: "ask again" },
+              ...options.map((option) => ({ value: option.id, label: option.text })),
+            ]}
+            defaultValue={answered}
+          />
+        ))}
       {kind === "free" ? (
         <TextField
           label="Temperature of the free energies"

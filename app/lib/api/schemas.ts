@@ -289,13 +289,12 @@ export const ensembleListQuerySchema = z.object({
   ).meta(shownAs({ type: "integer", minimum: 1, default: 1 }, "From 1; 50 ensembles a page.")),
 });
 
+const answerList = z
+  .array(z.strictObject({ id: z.string().min(1).max(40), option: z.string().min(1).max(200) }))
+  .max(20);
+
 export const answersRequestSchema = z
-  .strictObject({
-    answers: z
-      .array(z.strictObject({ id: z.string().min(1).max(40), option: z.string().min(1).max(200) }))
-      .min(1)
-      .max(20),
-  })
+  .strictObject({ answers: answerList.min(1) })
   .meta({ id: "AnswersRequest" });
 export type AnswersRequest = z.infer<typeof answersRequestSchema>;
 
@@ -309,8 +308,15 @@ export const rereadRequestSchema = z
       .union([z.number().min(0.001).max(100_000), uploadFieldsSchema.shape.energyTemperature.unwrap()])
       .optional()
       .meta(shownAs({ type: "number", minimum: 0.001, maximum: 100_000 }, "K")),
+    answers: answerList.optional().meta({
+      description:
+        'New answers to what intake asked of the files themselves, such as the configuration: id of the question and an option, or "ask" to be asked again. Those that are not named stay.',
+    }),
   })
-  .meta({ id: "RereadRequest", description: "The new answers; what is left out is open again." });
+  .meta({
+    id: "RereadRequest",
+    description: "The new answers; what is left out of unit, number, level and kind is open again.",
+  });
 export type RereadRequest = z.infer<typeof rereadRequestSchema>;
 
 export const decisionRequestSchema = z

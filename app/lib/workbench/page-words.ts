@@ -14,6 +14,7 @@ const PAGE_WORDS: readonly (readonly [RegExp, string])[] = [
   [/send energyFrom=none/g, "choose “none” as the energy"],
   [/State energyUnit:/g, "State the unit of the energies:"],
   [/state one of these in energyUnit/g, "choose one of these as the unit"],
+  [/ \(POST \/api\/v1\/ensembles\/\w+\/reread\)/g, ""],
   [/energyKind=(\w+)/g, "the kind “$1”"],
   [/energyFrom/g, "the number that is the energy"],
   [/energyUnit/g, "the unit of the energies"],

@@ -9,7 +9,7 @@ export const action = answerCall({
   async POST({ actor, params, request }) {
     const { teamId, ensembleId } = await accessEnsemble(actor, "take-in", params.id ?? "");
     const asked = await readJsonOrForm(request, rereadRequestSchema);
-    await rereadEnsemble({ actor, ensembleId, ...rereadAnswers(asked) });
+    await rereadEnsemble({ actor, ensembleId, ...rereadAnswers(asked), given: asked.answers });
     return json(await describeEnsemble(teamId, ensembleId));
   },
 });

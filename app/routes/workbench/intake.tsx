@@ -1,6 +1,7 @@
 import { data, useOutletContext } from "react-router";
 import type { ActAnswer } from "~/components/workbench/act-answer";
 import { IntakeSection } from "~/components/workbench/intake-section";
+import { REREAD_ANSWER } from "~/components/workbench/read-again";
 import { sectionMeta } from "~/components/workbench/section-meta";
 import { actorContext, requestIdContext } from "~/context";
 import { rereadRequestSchema, uploadFieldsSchema } from "~/lib/api/schemas";
@@ -9,6 +10,7 @@ import type { IntakeView } from "~/lib/views";
 import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { answerQuestions } from "~/services/ensembles/answer-questions.server";
+import { ASK_AGAIN } from "~/services/ensembles/changed-reading";
 import { holdFrame, releaseFrame } from "~/services/ensembles/decide-frame.server";
 import { ensembleNameSchema, renameEnsemble } from "~/services/ensembles/rename-ensemble.server";
 import { rereadAnswers } from "~/services/ensembles/reread-answers";
@@ -77,7 +79,12 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
       );
       const asked = rereadFormSchema.safeParse(Object.fromEntries(typed.filter(([, value]) => value !== "")));
       if (!asked.success) return refused(asked.error.issues.map(({ message }) => message).join(" "));
-      await rereadEnsemble({ actor, ensembleId, ...rereadAnswers(asked.data) });
+      const given = [...form].flatMap(([name, value]) =>
+        name.startsWith(REREAD_ANSWER) && typeof value === "string"
+          ? [{ id: name.slice(REREAD_ANSWER.length), option: value === "" ? ASK_AGAIN : value }]
+          : [],
+      );
+      await rereadEnsemble({ actor, ensembleId, ...rereadAnswers(asked.data), given });
       return { ok: true, done: { intent } } satisfies ActAnswer;
     }
     case "rename": {

@@ -95,11 +95,15 @@ async function refresh(tx: Transaction, at: At, ensemble: EnsembleRow): Promise<
     .where(eq(ensembles.id, at.ensembleId));
 }
 
-function answeredBefore(question: IntakeQuestion): DomainError {
+function answeredBefore(question: IntakeQuestion, at: At): DomainError {
+  const how =
+    readAskId(question.id) === null
+      ? "Read the files again to answer it anew"
+      : "To answer it anew, read the files again with it among the answers";
   return new DomainError(
     "conflict",
     "Answered before",
-    `"${question.text}" was answered "${question.answered}" before. Read the files again to answer it anew.`,
+    `"${question.text}" was answered "${question.answered}" before. ${how} (POST /api/v1/ensembles/${at.ensembleId}/reread).`,
   );
 }
 
@@ -116,7 +120,7 @@ async function answerAll(tx: Transaction, at: At, answers: readonly Answer[]): P
     // The same answer again is a call repeated after a lost connection.
     if (question.answered === kept) continue;
     if (question.answered !== undefined) {
-      throw answeredBefore(question);
+      throw answeredBefore(question, at);
     }
     await markAnswered(tx, at, question, kept);
     await record(tx, at, question, kept, await settleAnswers(tx, ensemble));
@@ -165,7 +169,7 @@ async function readingAnswers(at: At, answers: readonly Answer[]): Promise<Readi
     const question = asked.find((one) => one.id === id);
     if (question === undefined) throw invalid(`Intake asked no question "${id}".`);
     if (question.answered === option) return [];
-    if (question.answered !== undefined) throw answeredBefore(question);
+    if (question.answered !== undefined) throw answeredBefore(question, at);
     return [{ question, option: checkOption(question, option) }];
   });
 }

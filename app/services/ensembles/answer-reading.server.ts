@@ -119,5 +119,6 @@ export async function answerReading(at: At, given: readonly ReadingAnswer[]): Pr
       const { question: id, ...words } = entryOf(answer);
       return { id, ...words };
     }),
+    byAnswer: true,
   });
 }

@@ -19,6 +19,7 @@ import { recomputeComputed } from "../columns/recompute-computed.server.ts";
 import { notFound } from "../http.server.ts";
 import { writeEntry } from "../logbook/write-entry.server.ts";
 import { acceptedSha } from "./accepted-frames.server.ts";
+import { type ChangedReading, changedReading, type GivenAnswer } from "./changed-reading.ts";
 import { completeReading, type WrittenAnswers } from "./complete-reading.server.ts";
 import { type Counts, countFrames, levelsInUse } from "./intake-rows.server.ts";
 import { keepStated } from "./keep-stated.ts";
@@ -164,6 +165,8 @@ export interface RereadPlan {
   keeps(id: string): boolean;
   /** Those that this reading answers. */
   answered: readonly { id: string; option: string; text: string; optionText: string }[];
+  /** Nothing but an answer to a question, which its entry says; else the reading has an entry of its own. */
+  byAnswer: boolean;
 }
 
 async function answeredRows(tx: Transaction, at: At, plan: RereadPlan): Promise<AnsweredRow[]> {
@@ -239,7 +242,7 @@ async function writeDown(
       data: { question: id, text, option, optionText, released },
     });
   }
-  if (plan.answered.length > 0) return;
+  if (plan.byAnswer) return;
   await writeEntry(tx, at, at, {
     type: "reread",
     data: { before: old.before, after: plan.answers, ...now },
@@ -344,17 +347,23 @@ export async function readAgain(at: At, plan: RereadPlan): Promise<void> {
 
 /**
  * Reads the stored files of an ensemble again with other answers; the ensemble keeps its id. What a person decided on
- * single frames stays decided. A program that leaves unit or level open is refused and nothing changes; a person is
- * asked.
+ * single frames stays decided, and what was answered of the reading itself, where no other answer is given. A program
+ * that leaves unit or level open is refused and nothing changes; a person is asked.
+ *
+ * @param options.given new answers to questions about the reading of the files; `ASK_AGAIN` opens one again
+ * @throws DomainError invalid for an unknown question or option
  */
 export async function rereadEnsemble(options: {
   actor: Actor;
   ensembleId: string;
   answers: WrittenAnswers;
   kindStated: boolean;
+  given?: readonly GivenAnswer[];
 }): Promise<void> {
   const at = await accessEnsemble(options.actor, "take-in", options.ensembleId);
-  const { reading } = await answersBefore(at);
+  const { reading: before } = await answersBefore(at);
+  const anew = changedReading(await findQuestions(at.ensembleId), options.given ?? []);
+  const reading = anew.apply(before, 0);
   const interactive = options.actor.kind === "user";
   await readAgain(at, {
     answers: { ...options.answers, ...(reading ? { reading } : {}) },
@@ -365,11 +374,25 @@ export async function rereadEnsemble(options: {
       confirmUnit: interactive,
       knownLevels: interactive ? await levelsInUse(at.teamId, at.ensembleId) : [],
     },
-    batchReadings: new Map(),
+    batchReadings: await batchReadingsWith(at, anew),
     // What was answered of the reading itself holds for other energies too.
-    keeps: (id) => readAskId(id) !== null,
-    answered: [],
+    keeps: (id) => readAskId(id) !== null && !anew.opens(id),
+    answered: anew.answered,
+    byAnswer: false,
   });
+}
+
+/** Readings of further batches that the new answers change. */
+async function batchReadingsWith(at: At, anew: ChangedReading): Promise<Map<number, ReadingChoices>> {
+  const readings = new Map<number, ReadingChoices>();
+  for (const batch of anew.batches.filter((one) => one > 0)) {
+    const [row] = await db
+      .select({ answers: batches.answers })
+      .from(batches)
+      .where(and(eq(batches.ensembleId, at.ensembleId), eq(batches.batch, batch)));
+    readings.set(batch, anew.apply(row?.answers.reading, batch) ?? {});
+  }
+  return readings;
 }
 
 /** The answers that the ensemble was read with until now. */
