@@ -2,7 +2,8 @@ import { and, asc, eq, inArray, lte, or, sql } from "drizzle-orm";
 import { db } from "../../db/client.server.ts";
 import { editions, ensembleFiles, logbook, sources } from "../../db/schema.server.ts";
 import type { EditionView } from "../../lib/edition/views.ts";
-import { describeEntry, type LogbookType, logbookEntrySchema } from "../../lib/logbook/entries.ts";
+import { logbookEntrySchema } from "../../lib/logbook/entries.ts";
+import { describeShared, OWN_KINDS, SHARED_KINDS } from "../../lib/logbook/shared.ts";
 import { escapeLines } from "../../lib/text/escape.ts";
 import { accessBySecret, type LinkGrant } from "../auth/access.server.ts";
 import { toEditionView } from "../editions/edition-view.server.ts";
@@ -26,18 +27,6 @@ export type SharedPage =
   | { live: true; edition: EditionView; endsAt: string; entries: SharedEntry[] | null }
   | { live: false; endedAt: string; contact: string };
 
-/** Decisions on the ensemble; people, tokens, links, exports and other editions are no business of a guest's. */
-const SHARED_KINDS: readonly LogbookType[] = [
-  "intake",
-  "reread",
-  "answer",
-  "hold",
-  "release",
-  "release-refused",
-  "sift",
-  "columns-added",
-  "column-changed",
-];
 const MOST_ENTRIES = 300;
 
 /** What was decided up to the edition, and that it was frozen. */
@@ -47,7 +36,7 @@ async function sharedEntries(
 ): Promise<SharedEntry[]> {
   const decided = and(inArray(logbook.type, [...SHARED_KINDS]), lte(logbook.createdAt, edition.createdAt));
   const frozen = and(
-    eq(logbook.type, "edition-frozen"),
+    inArray(logbook.type, [...OWN_KINDS]),
     sql`json_value(${logbook.data}, '$.number') = ${edition.number}`,
   );
   const rows = await db
@@ -68,7 +57,9 @@ async function sharedEntries(
     const read = logbookEntrySchema.safeParse({ type, data });
     if (!read.success) return [];
     const by = tokenId !== null ? "token" : userId !== null ? "person" : "product";
-    const { text, detail } = describeEntry(read.data);
+    const told = describeShared(read.data);
+    if (told === null) return [];
+    const { text, detail } = told;
     const words = { text: escapeLines(text), detail: detail === null ? null : escapeLines(detail) };
     return [{ at: at.toISOString(), by, ...words }];
   });
