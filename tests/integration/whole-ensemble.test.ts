@@ -24,6 +24,7 @@ let lab: Awaited<ReturnType<typeof makeLab>>;
 let ensembleId = "";
 let siftId = "";
 let kept: number[] = [];
+let mirrorRmsds: number[] = [];
 
 beforeAll(async () => {
   running = await withJobs();
@@ -33,6 +34,7 @@ beforeAll(async () => {
   const sift = await sifted(lab.token, ensembleId, { level: "MMFF94", mirror: "keep" });
   siftId = sift.id;
   kept = sift.result?.kept.map(({ frame }) => frame) ?? [];
+  mirrorRmsds = sift.result?.kept.map(({ mirrorRmsd }) => mirrorRmsd) ?? [];
 }, 120_000);
 
 afterAll(() => running.stop());
@@ -302,6 +304,26 @@ describe("a structure from outside", () => {
     expect(answer.status).toBe(422);
     expect(await answer.text()).toContain(words);
     expect(await list()).toHaveLength(before);
+  });
+
+  it("near to a shape of which both hands are kept: the population is said to be that of one", async () => {
+    // Kept apart by this sift: gauche to either side; anti is its own mirror image.
+    const apart = mirrorRmsds.findIndex((rmsd) => rmsd > 0.5);
+    const own = mirrorRmsds.findIndex((rmsd) => rmsd < 0.05);
+    for (const [at, said] of [
+      [
+        apart,
+        /That counts one hand only: c\d+ is its mirror image and is kept apart, with \d+\s% of its own\./,
+      ],
+      [own, null],
+    ] as const) {
+      const lines = file.split("\n").slice(10 * (kept[at]! - 1), 10 * kept[at]!);
+      await send("shape.xyz", `${lines.join("\n")}\n`, { level: "none" });
+      const html = await page();
+      expect(html).toContain(`is nearest to c${at + 1}, 0.00`);
+      if (said) expect(html).toMatch(said);
+      else expect(html).not.toContain("one hand only");
+    }
   });
 
   it("is taken away and brought back, and the logbook says so", async () => {

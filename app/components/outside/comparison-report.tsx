@@ -49,7 +49,9 @@ export function ComparisonReport(props: Props) {
   const [nearest = over] = near;
   const { strain, carries, why } = useStrain(comparison);
   const torsions = fits.find(({ frame }) => frame === nearest.frame)?.torsions ?? [];
-  const finding = outsideFinding(structure.name, near, { strain, near: choice.near, torsions, labels });
+  const otherHand = near.find(({ frame }) => frame === comparison.otherHand) ?? null;
+  const said = { strain, near: choice.near, torsions, labels, otherHand };
+  const finding = outsideFinding(structure.name, near, said);
   const cost = nearest.population ? -thermalEnergyKcal(temperatureK) * Math.log(nearest.population) : null;
   return (
     <>

@@ -35,6 +35,17 @@ describe("conformers as they lie to a structure from outside", () => {
     expect(said?.text).toContain("strained by 2.31 more");
     expect(said?.second).toContain("Two of 3 torsions agree within 15°; B is turned by 19°.");
     expect(said?.second).toMatch(/One conformer lies within 0\.50/);
+    const otherHand = { name: "c3", population: 0.1 };
+    const apart = outsideFinding("pose.sdf", near, {
+      strain: null,
+      near: 0.5,
+      torsions: [],
+      labels,
+      otherHand,
+    });
+    expect(apart?.second).toMatch(
+      /^That counts one hand only: c3 is its mirror image and is kept apart, with 10\s% of its own\. One/,
+    );
     expect(outsideFinding("x", [], { strain: null, near: 0.5, torsions: [], labels: [] })).toBeNull();
   });
 });

@@ -69,6 +69,8 @@ export function outsideFinding(
     near: number;
     torsions: readonly Apart[];
     labels: readonly string[];
+    /** Kept beside the nearest as its mirror image, so that the population of the nearest is that of one hand. */
+    otherHand?: { name: string; population: number | null } | null;
   },
 ): { text: string; second: string } | null {
   const nearest = rows[0];
@@ -84,7 +86,7 @@ export function outsideFinding(
       ? energy === null
         ? ""
         : ` That shape lies ${energy}`
-      : ` The flask holds ${nearest.population < 0.005 ? "less than 1\u00a0%" : formatPercent(nearest.population)} of that shape, ${energy}`;
+      : ` The flask holds ${shareOf(nearest.population)} of that shape, ${energy}`;
   const above =
     options.strain === null || nearest.relativeEnergy === null
       ? null
@@ -97,7 +99,19 @@ export function outsideFinding(
         : `; the structure itself lies ${formatEnergy(-above)} below it.`;
   const hand = nearest.mirror ? ", as its mirror image" : "";
   const text = `${name} is nearest to ${nearest.name}, ${withUnit(fixed(nearest.rmsd, 2), "Å")} away${hand}.${shape}${shape === "" ? "" : strain}`;
-  return { text, second: [torsionWords(options), nearWords(rows, options.near)].filter(Boolean).join(" ") };
+  const hands = nearest.population === null ? "" : handWords(options.otherHand ?? null);
+  const second = [hands, torsionWords(options), nearWords(rows, options.near)].filter(Boolean).join(" ");
+  return { text, second };
+}
+
+function handWords(other: { name: string; population: number | null } | null): string {
+  if (other === null) return "";
+  const share = other.population === null ? "" : `, with ${shareOf(other.population)} of its own`;
+  return `That counts one hand only: ${other.name} is its mirror image and is kept apart${share}.`;
+}
+
+function shareOf(population: number): string {
+  return population < 0.005 ? "less than 1\u00a0%" : formatPercent(population);
 }
 
 function nearWords(rows: readonly OutsideRow[], near: number): string {

@@ -12,7 +12,8 @@ import {
 } from "../../lib/outside/compare-outside.ts";
 import { inEnsembleOrder } from "../../lib/outside/ensemble-order.ts";
 import { nearestRows } from "../../lib/outside/finding.ts";
-import type { SiftResult } from "../../lib/recipe/result.ts";
+import type { SiftRecipe } from "../../lib/recipe/recipe.ts";
+import type { KeptConformer, SiftResult } from "../../lib/recipe/result.ts";
 import type { AtomSet, Graph } from "../../lib/structure.ts";
 import { frameIndices } from "../ensembles/frame-indices.server.ts";
 import { loadPositions } from "../ensembles/load-positions.server.ts";
@@ -50,6 +51,8 @@ export interface OutsideComparison {
   }[];
   /** Atoms from 0 at which the structure is another stereoisomer. */
   otherConfiguration: number[];
+  /** Frame that is kept beside the nearest conformer as its mirror image; null where there is none, or nobody asked. */
+  otherHand: number | null;
 }
 
 interface Molecule {
@@ -130,7 +133,8 @@ function nearnessOnce(key: string, compute: () => Promise<Nearness>): Promise<Ne
 export async function compareOutside(options: {
   ensembleId: string;
   outside: { id: string; data: OutsideData };
-  sift: { id: string; result: Pick<SiftResult, "kept"> };
+  /** With its recipe the mirror image of the nearest conformer is looked for. */
+  sift: { id: string; result: Pick<SiftResult, "kept">; recipe?: SiftRecipe };
   choice: Pick<OutsideChoice, "set" | "mirror">;
 }): Promise<OutsideComparison | null> {
   const { outside, sift, choice } = options;
@@ -162,6 +166,11 @@ export async function compareOutside(options: {
     positions.subarray(3 * molecule.atoms * k, 3 * molecule.atoms * (k + 1)),
   );
   const [nearest] = conformers;
+  const { recipe } = sift;
+  const otherHand =
+    recipe?.mirror === "keep" && countMirror && nearest !== undefined
+      ? await keptImage(molecule, { frame: near[0]?.frame ?? 0, positions: nearest }, sift, recipe)
+      : null;
   return {
     outsideId: outside.id,
     siftId: sift.id,
@@ -176,7 +185,38 @@ export async function compareOutside(options: {
     }),
     otherConfiguration:
       nearest === undefined ? [] : comparer.otherConfiguration(nearest, comparer.fit(nearest, false)),
+    otherHand,
   };
+}
+
+/**
+ * The kept frame that is the mirror image of another one by the rule of the sift: within its tolerances, over its atoms.
+ * None for a shape that is its own mirror image.
+ */
+async function keptImage(
+  molecule: Molecule,
+  of: { frame: number; positions: Float64Array },
+  sift: { id: string; result: Pick<SiftResult, "kept"> },
+  recipe: SiftRecipe,
+): Promise<number | null> {
+  const { rmsdTolerance, energyTolerance, atoms } = recipe;
+  const compared = sift.result.kept.slice(0, MOST_COMPARED);
+  const own = compared.find(({ frame }) => frame === of.frame);
+  if (own === undefined || own.mirrorRmsd <= rmsdTolerance) return null;
+  const alike = ({ relativeEnergy }: KeptConformer) =>
+    energyTolerance === null ||
+    relativeEnergy === null ||
+    own.relativeEnergy === null ||
+    Math.abs(relativeEnergy - own.relativeEnergy) <= energyTolerance;
+  const frames = compared.filter((one) => one !== own && alike(one)).map(({ frame }) => frame);
+  const comparer = new OutsideComparer(molecule.graph, { positions: of.positions, atoms: "all" }, atoms);
+  const key = `${sift.id} ${of.frame} image ${molecule.version}`;
+  const { mirrorRmsd } = await nearnessOnce(key, () => compareAll(molecule, comparer, frames));
+  let best = -1;
+  mirrorRmsd.forEach((rmsd, k) => {
+    if (rmsd <= rmsdTolerance && (best < 0 || rmsd < (mirrorRmsd[best] ?? 0))) best = k;
+  });
+  return frames[best] ?? null;
 }
 
 /** The mapping was made for this molecule. */

@@ -33,7 +33,7 @@ export async function loadOutside(options: {
   if (outside === undefined) return nothing;
   const sift = await loadSift({ actor, ensembleId, siftId });
   if (sift === null || sift.result === null) return nothing;
-  const { id, result } = sift;
-  const comparison = await compareOutside({ ensembleId, outside, sift: { id, result }, choice });
+  const { id, result, recipe } = sift;
+  const comparison = await compareOutside({ ensembleId, outside, sift: { id, result, recipe }, choice });
   return { structures, deleted, comparison, outdated: comparison === null };
 }
