@@ -1,6 +1,6 @@
 import { Download } from "lucide-react";
 import { useMemo, useRef, useState } from "react";
-import { href, useActionData, useLocation } from "react-router";
+import { href, useActionData, useLocation, useRevalidator } from "react-router";
 import { Button, buttonClass } from "~/components/ui/button";
 import { Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
@@ -8,7 +8,7 @@ import { ProgressBar } from "~/components/ui/progress-bar";
 import { TextButton, TextLink } from "~/components/ui/text-link";
 import { makeCurrent, useNewSift } from "~/hooks/use-sift";
 import { useTimeLeft } from "~/hooks/use-time-left";
-import { capital, fixed, formatPercent, formatRmsd, formatSeconds, plural, withUnit } from "~/lib/format";
+import { capital, fixed, formatRmsd, formatSeconds, plural, withUnit } from "~/lib/format";
 import { type SiftRecipe, type SiftRequest, WIDE_RMSD_TOLERANCE } from "~/lib/recipe/recipe";
 import { distinctFinding, joinWords, nearMirror } from "~/lib/workbench/findings";
 import { defaultsOf, recipeLine, requestOf, settingsApart } from "~/lib/workbench/recipe-words";
@@ -32,6 +32,7 @@ const MOST_ASKED_ON_THE_WAY = 2000;
 export function DistinctSetSection() {
   const { ensemble, sift, result, state, change } = useWorkbench();
   const { search } = useLocation();
+  const { revalidate } = useRevalidator();
   const foundBy = useFoundBy();
   // One step of history for one gesture: while a thumb is held the later results replace the first.
   const gesture = useRef<"open" | "fresh">("fresh");
@@ -44,6 +45,8 @@ export function DistinctSetSection() {
   const [cancelled, setCancelled] = useState(0);
   // The settings as they stand, ahead of the set that is shown.
   const [draft, setDraft] = useState<SiftRequest | null>(null);
+  // A first set that is asked for, before the server has answered, and one that is ready, before it has come.
+  const [onTheWay, setOnTheWay] = useState<{ progress: number } | null>(null);
   const moved = useRef<SiftRequest | null>(null);
   const lastAsked = useRef<SiftRequest | null>(null);
   moved.current = draft;
@@ -55,6 +58,12 @@ export function DistinctSetSection() {
     if (moved.current !== null && moved.current !== lastAsked.current) return;
     if (sift === null || id === sift.id) {
       setDraft(null);
+      // Asked for again it is the sift of before, which now has a set: the address stays, what it shows does not.
+      if (result === null) {
+        setOnTheWay({ progress: 1 });
+        await revalidate();
+        setOnTheWay(null);
+      }
       return;
     }
     if (result && gesture.current === "fresh")
@@ -67,7 +76,9 @@ export function DistinctSetSection() {
     gesture.current = "open";
     // The step before must be in the history, or this one would overtake it.
     await named.current;
+    if (result === null) setOnTheWay({ progress: 1 });
     await latest.current({ sift: id }, { replace });
+    setOnTheWay(null);
   });
   // biome-ignore lint/correctness/useExhaustiveDependencies: a sift never changes its recipe; read again it is the same one
   const request = useMemo<SiftRequest>(
@@ -81,7 +92,9 @@ export function DistinctSetSection() {
     if (sift !== null && result !== null && state.sift === null) {
       named.current = change({ sift: sift.id }, { replace: true });
     }
+    if (result === null) setOnTheWay({ progress: 0 });
     void ask(next).finally(() => {
+      setOnTheWay((now) => (now?.progress === 0 ? null : now));
       if (settled) gesture.current = "fresh";
     });
   };
@@ -95,8 +108,8 @@ export function DistinctSetSection() {
   };
   const finding = result ? distinctFinding(result) : null;
   const startButton = ensemble.mayCompute ? (
-    <Button kind="primary" onClick={() => onAsk(request, true)} disabled={asked !== null}>
-      {asked ? `Comparing, ${formatPercent(asked.progress)}` : `Sift ${plural(ensemble.accepted, "frame")}`}
+    <Button kind="primary" onClick={() => onAsk(request, true)}>
+      Sift {plural(ensemble.accepted, "frame")}
     </Button>
   ) : undefined;
   return (
@@ -116,7 +129,22 @@ export function DistinctSetSection() {
         }
       />
       {sift === null || result === null || finding === null ? (
-        <SectionState start={startButton} />
+        <>
+          <SectionState
+            start={startButton}
+            asked={asked ?? (onTheWay && { id: null, ...onTheWay })}
+            silent={silent}
+            onCancel={() => {
+              cancel();
+              setOnTheWay(null);
+            }}
+          />
+          {error === null ? null : (
+            <p role="alert" className="mt-3 text-danger">
+              {error}
+            </p>
+          )}
+        </>
       ) : (
         <>
           <div className={fade} aria-busy={follows}>

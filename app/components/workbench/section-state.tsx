@@ -7,19 +7,47 @@ import { StatePanel } from "~/components/ui/state-panel";
 import { useNewSift } from "~/hooks/use-sift";
 import { useTimeLeft } from "~/hooks/use-time-left";
 import { formatCount, formatPercent, formatSeconds, plural } from "~/lib/format";
+import { searchOf, writeState } from "~/lib/url-state";
 import type { SiftView } from "~/lib/views";
-import { requestOf } from "~/lib/workbench/recipe-words";
+import { recipeLine, requestOf } from "~/lib/workbench/recipe-words";
 import { useWorkbench } from "./workbench-context";
 
 /**
  * What a section shows while it has no result: the question that comes first, the sift under way, or how to start one.
  * `null` means that there is a result to show.
+ *
+ * @param asked the sift that was just asked for from here; the one before is spoken of no more
  */
-export function SectionState({ start }: { start?: ReactNode }) {
+export function SectionState({
+  start,
+  asked = null,
+  silent = false,
+  onCancel,
+}: {
+  start?: ReactNode;
+  asked?: { id: string | null; progress: number; pairs?: number } | null;
+  silent?: boolean;
+  onCancel?: () => void;
+}) {
   const { ensemble, sift, result } = useWorkbench();
   const { search } = useLocation();
   if (result !== null) return null;
   const intake = { pathname: href("/ensembles/:id/intake", { id: ensemble.id }), search };
+  if (asked !== null) {
+    const { id, progress, pairs } = asked;
+    return (
+      <Running
+        sift={{
+          id,
+          status: "running",
+          progress,
+          ...(pairs === undefined ? {} : { pairs }),
+          ...(silent ? { silent } : {}),
+        }}
+        onCancel={onCancel}
+      />
+    );
+  }
   if (sift !== null && (sift.status === "queued" || sift.status === "running"))
     return <Running sift={sift} />;
   if (ensemble.accepted === 0) {
@@ -40,11 +68,12 @@ export function SectionState({ start }: { start?: ReactNode }) {
   }
   if (sift?.status === "failed") {
     return (
-      <StatePanel tone="danger" title="The sift failed" className="mt-6" actions={start}>
+      <StatePanel tone="danger" title="The sift failed" className="mt-6" actions={<Ways start={start} />}>
         <p>
           {sift.error ?? "It ended without a result."} The frames and their energies are as they were; ask
           again.
         </p>
+        <p>{askedWith(sift)}</p>
       </StatePanel>
     );
   }
@@ -52,23 +81,54 @@ export function SectionState({ start }: { start?: ReactNode }) {
     <StatePanel
       title={sift?.status === "cancelled" ? "The sift was cancelled" : "Not sifted yet"}
       className="mt-6"
-      actions={
-        start ?? (
-          <ButtonLink to={{ pathname: href("/ensembles/:id/distinct-set", { id: ensemble.id }), search }}>
-            Go to the distinct set
-          </ButtonLink>
-        )
-      }
+      actions={<Ways start={start} />}
     >
       <p>
         {plural(ensemble.accepted, "frame is", "frames are")} accepted. Which of them differ is found by
         comparing their shapes.
       </p>
+      {sift?.status === "cancelled" ? <p>{askedWith(sift)}</p> : null}
     </StatePanel>
   );
 }
 
-function Running({ sift }: { sift: SiftView }) {
+/** "It was asked with MMFF94 energies, ..." */
+function askedWith({ recipe }: SiftView): string {
+  return `It was asked with ${recipeLine(recipe, null)}.`;
+}
+
+/** On from a section without a set: the sift, and the set before where this one came to nothing. */
+function Ways({ start }: { start?: ReactNode }) {
+  const { ensemble, state, lastSet } = useWorkbench();
+  const { pathname, search } = useLocation();
+  return (
+    <>
+      {start ?? (
+        <ButtonLink to={{ pathname: href("/ensembles/:id/distinct-set", { id: ensemble.id }), search }}>
+          Go to the distinct set
+        </ButtonLink>
+      )}
+      {lastSet === null ? null : (
+        <ButtonLink
+          to={{
+            pathname,
+            search: searchOf(writeState({ ...state, sift: null }, new URLSearchParams(search))),
+          }}
+        >
+          Back to the last set
+        </ButtonLink>
+      )}
+    </>
+  );
+}
+
+function Running({
+  sift,
+  onCancel,
+}: {
+  sift: Pick<SiftView, "status" | "progress" | "pairs" | "silent"> & { id: string | null };
+  onCancel?: () => void;
+}) {
   const { ensemble } = useWorkbench();
   const left = useTimeLeft(sift.status === "running" ? sift.id : null, sift.progress);
   return (
@@ -86,6 +146,11 @@ function Running({ sift }: { sift: SiftView }) {
             was interrupted, and this page goes on by itself.
           </p>
         ) : null}
+        {onCancel === undefined ? null : (
+          <Button size="sm" className="mt-3" onClick={onCancel}>
+            Cancel
+          </Button>
+        )}
         <p className="mt-2 hidden text-xs text-ink-3 noscript:block">
           Load the page again to see how far it is.
         </p>

@@ -25,6 +25,8 @@ export interface Workbench {
   /** The sift shown; its result is there when `result` is. */
   sift: SiftView | null;
   result: SiftResult | null;
+  /** A set to go back to where the sift failed or was cancelled. */
+  lastSet: string | null;
   level: LevelView | null;
   state: WorkbenchState;
   change: ChangeState;
@@ -71,12 +73,14 @@ const NO_ROLES: ReadonlyMap<number, FrameRole> = new Map();
 export function WorkbenchProvider({
   ensemble,
   sift,
+  lastSet,
   first,
   section,
   children,
 }: {
   ensemble: EnsembleView;
   sift: SiftView | null;
+  lastSet: string | null;
   /** Frame to show while there is no distinct set. */
   first: number | null;
   /** Last part of the address: what a section does not show is not computed. */
@@ -141,6 +145,7 @@ export function WorkbenchProvider({
       ensemble,
       sift,
       result,
+      lastSet,
       level,
       state,
       change,
@@ -164,6 +169,7 @@ export function WorkbenchProvider({
       ensemble,
       sift,
       result,
+      lastSet,
       level,
       state,
       change,

@@ -30,6 +30,8 @@ const WITHOUT_VIEW = ["hand-over", "logbook"];
 export interface WorkbenchData {
   ensemble: EnsembleView;
   sift: SiftView | null;
+  /** Where the sift came to nothing: the one that is shown when none is named; null where that has no set either. */
+  lastSet: string | null;
   intake: IntakeView;
 }
 
@@ -50,12 +52,24 @@ function SharedFacts({ children }: { children: ReactNode }) {
 }
 
 /** Header, rail and view around the sections; one page, whatever section is open. */
-export function WorkbenchPage({ ensemble, sift, intake, children }: WorkbenchData & { children: ReactNode }) {
+export function WorkbenchPage({
+  ensemble,
+  sift,
+  lastSet,
+  intake,
+  children,
+}: WorkbenchData & { children: ReactNode }) {
   const { pathname, search } = useLocation();
   const section = pathname.split("/")[3] ?? "populations";
   const followed = useFollowedSift(sift);
   return (
-    <WorkbenchProvider ensemble={ensemble} sift={followed} section={section} first={firstFrame(intake)}>
+    <WorkbenchProvider
+      ensemble={ensemble}
+      sift={followed}
+      lastSet={lastSet}
+      section={section}
+      first={firstFrame(intake)}
+    >
       <DecisionsProvider ensembleId={ensemble.id}>
         <BesideField value={search}>
           <SharedFacts>

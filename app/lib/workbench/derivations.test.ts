@@ -232,7 +232,7 @@ describe("findings in words", () => {
 
   test("pentane: the most populated is not the lowest", () => {
     expect(populationsFinding(pentaneRows, 298.15).text).toBe(
-      `Three shapes carry 99${NBSP}% of the ensemble at 298.15${NBSP}K, c2 alone 50${NBSP}%.`,
+      `Three shapes carry 98.8${NBSP}% of the ensemble at 298.15${NBSP}K, c2 alone 49.8${NBSP}%.`,
     );
   });
 
@@ -676,6 +676,9 @@ describe("stations of the course line", () => {
       "distinct-set: under way, todo",
     );
     expect(figures(ensemble, null)[1]).toBe("distinct-set: not yet, todo");
+    expect(figures(ensemble, { ...sift, status: "cancelled", result: null })[1]).toBe(
+      "distinct-set: cancelled, todo",
+    );
   });
 
   test("a set in file order has no populations", () => {

@@ -16,7 +16,8 @@ export function stations(ensemble: EnsembleView, sift: SiftView | null, temperat
   const ready = sift?.result ?? null;
   const weighed = ready !== null && sift?.recipe.level !== null;
   const running = sift !== null && (sift.status === "queued" || sift.status === "running");
-  const waits = running ? "under way" : ensemble.openQuestions > 0 ? "after intake" : "not yet";
+  const ended = sift?.status === "failed" || sift?.status === "cancelled" ? sift.status : null;
+  const waits = running ? "under way" : ensemble.openQuestions > 0 ? "after intake" : (ended ?? "not yet");
   const after = (figure: string): Pick<StationView, "figure" | "state"> =>
     ready === null ? { figure: waits, state: "todo" } : { figure, state: "done" };
   return [

@@ -3,7 +3,9 @@ import type { ShellHandle } from "~/components/layout/breadcrumbs";
 import { WorkbenchPage } from "~/components/workbench/workbench-page";
 import { actorContext, requestIdContext } from "~/context";
 import { readState } from "~/lib/url-state";
+import type { SiftView } from "~/lib/views";
 import { requireObjectMiddleware } from "~/middleware/require-access.server";
+import type { Actor } from "~/services/auth/access.server";
 import { loadEnsemble } from "~/services/ensembles/load-ensemble.server";
 import { loadIntake } from "~/services/ensembles/load-intake.server";
 import { forPage } from "~/services/http.server";
@@ -35,8 +37,15 @@ export async function loader({ params, context, url }: Route.LoaderArgs) {
       loadSift({ actor, ensembleId, siftId: sift }),
       loadIntake({ actor, ensembleId }),
     ]);
-    return { ensemble, sift: shown, intake };
+    return { ensemble, sift: shown, lastSet: await lastSetBeside(actor, ensembleId, shown), intake };
   });
+}
+
+/** A sift that came to nothing is no dead end: the set that stands for the ensemble otherwise, if there is one. */
+async function lastSetBeside(actor: Actor, ensembleId: string, shown: SiftView | null) {
+  if (shown?.status !== "failed" && shown?.status !== "cancelled") return null;
+  const other = await loadSift({ actor, ensembleId });
+  return other?.status === "done" ? other.id : null;
 }
 
 /** Temperature, selection and the like are answered in the browser: only another sift, or an act, asks the server again. */
