@@ -1,8 +1,9 @@
 // `npm run -s owner -- --email ADDRESS --team NAME`
-// Makes a team and prints the one-time link by which its first owner joins. Uses the database of the running
-// instance: DATABASE_URL, or the server of .data, which `npm start` runs.
+// Makes a team and prints the one-time link by which its first owner joins; run again before anybody joined, a new link to
+// the same team. Uses the database of the running instance: DATABASE_URL, or the server of .data, which `npm start` runs.
 import { parseArgs } from "node:util";
 import { runningUrl } from "./database.mjs";
+import { addressOf } from "./lib/address.mjs";
 import { dataFolder, loadSettings } from "./lib/prepare.mjs";
 import { inWords, StartError } from "./lib/processes.mjs";
 
@@ -35,7 +36,13 @@ async function main() {
     "../app/services/people/first-owner.server.ts",
     import.meta.url,
   );
-  console.log(await makeFirstOwnerOnce(options));
+  const { secret, renewed } = await makeFirstOwnerOnce(options);
+  console.log(`${addressOf(dataFolder())}/invitation/${secret}`);
+  if (renewed) {
+    console.error(
+      "The team waited for this owner already: this is a new link to it, the one of before has ended.",
+    );
+  }
 }
 
 main().catch((error) => {

@@ -3,7 +3,7 @@ import { pool } from "./client.server.ts";
 
 /** Rights that get round the triggers which keep the logbook and the editions from being changed. */
 const DANGEROUS = ["DROP", "ALTER", "TRIGGER", "SUPER", "CREATE USER"];
-const GUARDED = new Set(["logbook", "editions", "edition_files", "verifications"]);
+const GUARDED = new Set(["logbook", "editions", "edition_files", "verifications", "teams", "ensembles"]);
 
 /** True where a grant's object, as the server writes it, takes in a table that only grows. */
 function reachesRecords(object: string, database: string): boolean {

@@ -660,7 +660,7 @@ export const plans = mysqlTable(
 
 // --- hand-over --------------------------------------------------------------------------------
 
-/** Numbered, immutable snapshots: triggers refuse update and delete. */
+/** Numbered, immutable snapshots: triggers refuse update and delete, until the team is gone. */
 export const editions = mysqlTable(
   "editions",
   {
@@ -695,7 +695,7 @@ export const editions = mysqlTable(
 
 /**
  * The files handed out with an edition, as they were when it was frozen: deflated pieces of about 1 MB. Triggers refuse
- * update and delete; they go with their edition.
+ * update and delete, and further pieces of a frozen one; they go with their edition.
  */
 export const editionFiles = mysqlTable(
   "edition_files",

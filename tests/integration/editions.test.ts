@@ -1,7 +1,7 @@
 import { createHash } from "node:crypto";
 import { and, eq, sql } from "drizzle-orm";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
-import { db, inTransaction } from "~/db/client.server";
+import { db, inTransaction, pool } from "~/db/client.server";
 import { driverCode } from "~/db/driver-errors.server";
 import { newId } from "~/db/new-id.server";
 import { columns, editionFiles, editions, ensembles, jobs, logbook, verifications } from "~/db/schema.server";
@@ -159,6 +159,41 @@ describe("freezing", () => {
       );
       expect(code).toBe("ER_SIGNAL_EXCEPTION");
     }
+  });
+
+  it("cannot be got at by way of its team, its ensemble, further pieces or its verifications (security G03)", async () => {
+    const made = await freeze(actor(), at);
+    await verify(made);
+    const { teamId } = await rowOf(made.id);
+    const connection = await pool().getConnection();
+    const tried = async (statement: string, values: unknown[]) =>
+      connection.query(statement, values).then(
+        () => "done",
+        (error: unknown) => driverCode(error),
+      );
+    try {
+      // A session may switch foreign keys off and set its own clock, and no more.
+      for (const checks of [1, 0]) {
+        await connection.query(
+          `set foreign_key_checks = ${checks}, timestamp = unix_timestamp('2037-01-01')`,
+        );
+        const refused = [
+          await tried("update teams set id = 'aaaaaaaaaaaaaaaa' where id = ?", [teamId]),
+          await tried("update teams set deleted_at = '2020-01-01' where id = ?", [teamId]),
+          await tried("delete from teams where id = ?", [teamId]),
+          await tried("replace into teams (id, name, created_at) values (?, 'x', now())", [teamId]),
+          await tried("update ensembles set id = 'aaaaaaaaaaaaaaaa' where id = ?", [at.ensembleId]),
+          await tried("delete from editions where id = ?", [made.id]),
+          await tried("delete from verifications where edition_id = ?", [made.id]),
+          await tried("insert into edition_files values (?, 'results.csv', 9, 'x')", [made.id]),
+          await tried("insert into edition_files values (?, 'more.csv', 0, 'x')", [made.id]),
+        ];
+        expect(new Set(refused), `foreign_key_checks = ${checks}`).toEqual(new Set(["ER_SIGNAL_EXCEPTION"]));
+      }
+    } finally {
+      connection.destroy();
+    }
+    expect((await verify(made)).same).toBe(true);
   });
 
   it("is refused while the distinct set is out of date, and for readers and tokens", async () => {

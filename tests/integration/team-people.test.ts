@@ -4,6 +4,7 @@ import { db } from "~/db/client.server";
 import { newId } from "~/db/new-id.server";
 import {
   apiTokens,
+  editionFiles,
   editions,
   ensembles,
   invitations,
@@ -16,6 +17,7 @@ import {
   teams,
   throttles,
   users,
+  verifications,
 } from "~/db/schema.server";
 import { askNewAddress, confirmAddress, findAddressChange } from "~/services/account/change-address.server";
 import { changePassword } from "~/services/account/change-password.server";
@@ -221,12 +223,16 @@ describe("invitations", () => {
 describe("the first owner", () => {
   it("comes in by a one-time link of the command line (A09)", async () => {
     const email = `${newId()}@lab.example`;
-    const address = await makeFirstOwner({ email, team: "Harbour" });
-    const secret = address.split("/").at(-1) ?? "";
+    const first = await makeFirstOwner({ email, team: "Harbour" });
+    const { secret, renewed } = await makeFirstOwner({ email, team: "Harbour" });
+    expect([first.renewed, renewed]).toEqual([false, true]);
+    expect(await findInvitation(first.secret)).toBeNull();
+    expect(await db.$count(teams, eq(teams.name, "Harbour"))).toBe(1);
     const { teamId } = await joinByPassword({ secret, name: "First", password: PASSWORD, caller });
     const rows = await db.select().from(members).where(eq(members.teamId, teamId));
     expect(rows.map(({ role }) => role)).toEqual(["owner"]);
     expect(await findInvitation(secret)).toBeNull();
+    expect(await outcome(makeFirstOwner({ email, team: "Harbour" }))).toBe("conflict");
     expect(await outcome(makeFirstOwner({ email: "none", team: "Harbour" }))).toBe("invalid");
   });
 });
@@ -347,8 +353,12 @@ describe("a team", () => {
   });
 
   it("goes with all it holds after 30 days, its editions and links too (G06)", async () => {
-    const team = await makeTeam("Tidemark");
+    // Marked when it was made: the database lets nobody mark a team as deleted in the past, nor remove it earlier.
+    const team = { id: newId(), name: "Tidemark" };
+    const deletedAt = new Date(Date.now() - 29.5 * DAY_MS);
+    await db.insert(teams).values({ ...team, createdAt: deletedAt, deletedAt });
     const owner = await person(team.id, "owner");
+    await tokenOf(owner.id, team.id);
     const ensembleId = await makeEnsembleRow(team.id);
     const editionId = newId();
     await db.insert(editions).values({
@@ -360,11 +370,26 @@ describe("a team", () => {
       ...{ id: newId(), teamId: team.id, editionId, secretSha: Buffer.alloc(32, 7), prefix: "aaaa" },
       ...{ createdAt: new Date(), endsAt: new Date() },
     });
-    await deleteTeam({ actor: owner.actor, teamId: team.id, name: "Tidemark" });
-    await purgeDeleted(new Date(Date.now() + 31 * DAY_MS));
+    await db.insert(editionFiles).values({ editionId, name: "a.csv", position: 0, data: Buffer.from("x") });
+    await db.insert(verifications).values({
+      ...{
+        id: newId(),
+        editionId,
+        same: true,
+        files: [],
+        codeVersion: "t",
+        seconds: 1,
+        createdAt: new Date(),
+      },
+    });
+    await purgeDeleted();
+    expect(await db.$count(editions, eq(editions.id, editionId))).toBe(1);
+    await purgeDeleted(new Date(Date.now() + DAY_MS));
     expect(await db.$count(teams, eq(teams.id, team.id))).toBe(0);
     expect(await db.$count(ensembles, eq(ensembles.id, ensembleId))).toBe(0);
     expect(await db.$count(editions, eq(editions.id, editionId))).toBe(0);
+    expect(await db.$count(editionFiles, eq(editionFiles.editionId, editionId))).toBe(0);
+    expect(await db.$count(verifications, eq(verifications.editionId, editionId))).toBe(0);
     expect(await db.$count(apiTokens, eq(apiTokens.teamId, team.id))).toBe(0);
   });
 
