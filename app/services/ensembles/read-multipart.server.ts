@@ -8,6 +8,20 @@ export type FormPart =
   | { kind: "field"; name: string; value: string }
   | { kind: "file"; name: string; filename: string; data: Readable };
 
+const WRITTEN_OUT = new Map([
+  ["%22", '"'],
+  ["%0D", "\r"],
+  ["%0A", "\n"],
+]);
+
+/**
+ * A name as the file is called: browsers and curl write `"` and line ends in it as three signs, and nothing else, not even
+ * `%` itself (HTML standard, multipart/form-data encoding algorithm).
+ */
+function plainName(written: string): string {
+  return written.replace(/%22|%0D|%0A/g, (found) => WRITTEN_OUT.get(found) ?? found);
+}
+
 /** Generous for people, small enough that fields never fill the memory. */
 const LIMITS = { fields: 40, fieldSize: 4_096, fieldNameSize: 100, files: 200, headerPairs: 40 };
 
@@ -88,7 +102,7 @@ async function* readParts(
   parser.on("file", (name, data, info) => {
     // A failure of the whole form reaches the stream of the file too; whoever reads it hears of it there.
     data.on("error", () => {});
-    push({ kind: "file", name: name ?? "", filename: info.filename ?? "", data });
+    push({ kind: "file", name: name ?? "", filename: plainName(info.filename ?? ""), data });
   });
   parser.on("field", (name, value, info) => {
     if (info.valueTruncated || info.nameTruncated) {

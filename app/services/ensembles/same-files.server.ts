@@ -46,7 +46,7 @@ function refuseForeign(known: KnownEnsemble, grant: Grant): void {
   throw new DomainError(
     "conflict",
     "Already here",
-    "Somebody else took these files into the team before; this token sees only what it took in itself, so it is not told where they are.",
+    "Another token or person took these files into the team before; this token sees only what it took in itself, so it is not told where they are.",
   );
 }
 
