@@ -71,6 +71,28 @@ function push(port: number, files: string[], retries: string, { series = "Night"
 }
 const portOf = () => (server.address() as AddressInfo).port;
 
+describe("the Python example", () => {
+  const example = path.resolve(import.meta.dirname, "../app/lib/api/examples/read_populations.py");
+  const read = (words: string[], token: string) =>
+    new Promise<{ code: number; stderr: string }>((resolve) => {
+      const env = { ...process.env, LOWLYING_TOKEN: token, LOWLYING: "http://127.0.0.1:1" };
+      execFile("python3", [example, ...words], { env }, (error, _stdout, stderr) =>
+        resolve({ code: Number(error?.code ?? 0), stderr }),
+      );
+    });
+
+  it("says what its command lacks, and ends with 2", async () => {
+    const short = await read(["aaaaaaaaaaaaaaaa", "MMFF94"], "lowl_none");
+    expect(short.code).toBe(2);
+    expect(short.stderr).toMatch(/^Say which ensemble, .* found 2\.\nusage: /);
+    const nobody = await read(["aaaaaaaaaaaaaaaa", "MMFF94", "298.15"], "");
+    expect(nobody.code).toBe(2);
+    expect(nobody.stderr).toMatch(/^Put the token into LOWLYING_TOKEN\.\nusage: /);
+    // Complete, it asks: nobody listens there.
+    expect((await read(["aaaaaaaaaaaaaaaa", "MMFF94", "298.15"], "lowl_none")).code).toBe(4);
+  });
+});
+
 describe("the program that sends ensembles", () => {
   it("tries again where it is asked to wait, and counts one answer a file", async () => {
     calls = 0;

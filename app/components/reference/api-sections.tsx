@@ -88,8 +88,15 @@ function Shell() {
       <p>In a job array each task sends its own file; the name of the series keeps them together:</p>
       <Listing
         label="One task of a job array"
-        text={'sh push-ensembles.sh "$HOME/token.txt" "run-$JOB_ID" MMFF94 kcal/mol "search.$TASK_ID.xyz.gz"'}
+        text={[
+          'gzip -nf "search.$TASK_ID.xyz"',
+          'sh push-ensembles.sh "$HOME/token.txt" "run-$JOB_ID" MMFF94 kcal/mol "search.$TASK_ID.xyz.gz"',
+        ].join("\n")}
       />
+      <p>
+        With <code>-n</code> gzip leaves out the time: without it the same structures compressed again are
+        other bytes, and so a second ensemble.
+      </p>
     </>
   );
 }

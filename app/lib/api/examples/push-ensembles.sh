@@ -1,6 +1,6 @@
 #!/bin/sh
 # Sends each file as an ensemble of its own, with retries. Sending again is safe: the same bytes with the same answers
-# are the same ensemble.
+# are the same ensemble. Compress with gzip -n: without it the time goes in, and the same structures are other bytes.
 #
 #   LOWLYING=http://127.0.0.1:3000 sh push-ensembles.sh token.txt SERIES LEVEL UNIT FILE...
 #
