@@ -7,24 +7,25 @@ import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { showToast } from "~/components/ui/toast";
-import { ABSENT, capital, countWord, formatCount, formatEnergy, formatPopulation } from "~/lib/format";
-import { alternativesCsv, marginalOf } from "~/lib/plan/alternatives-csv";
+import { ABSENT, capital, countWord, formatCount, formatPopulation } from "~/lib/format";
+import { alternativesCsv, marginalOf, orderOf } from "~/lib/plan/alternatives-csv";
+import { alignPlans } from "~/lib/plan/chain";
 import { MAX_ALTERNATIVES, type PlanSet } from "~/lib/plan/plan";
 import type { PlansReport } from "~/lib/plan/report";
-import { costFigure, formatHours } from "~/lib/plan/words";
+import { costFigure, formatHours, waitingFigure, windowFigure } from "~/lib/plan/words";
 
 /** A plan that was left out at its old place, whatever was changed meanwhile; not where four others stand. */
 function withPlanAt(set: PlanSet, at: number, plan: PlanSet["plans"][number]): PlanSet {
   if (set.plans.length >= MAX_ALTERNATIVES) return set;
   const place = Math.min(at, set.plans.length);
-  return {
+  return alignPlans({
     ...set,
     plans: set.plans.toSpliced(place, 0, plan),
     chosen: set.chosen >= place ? set.chosen + 1 : set.chosen,
-  };
+  });
 }
 
-/** Plans side by side, at most four; the one at hand is washed in magenta. */
+/** Plans side by side, at most four, by rising share kept; the one at hand is washed in magenta. */
 export function AlternativesTable({
   set,
   startName,
@@ -40,8 +41,13 @@ export function AlternativesTable({
 }) {
   const { plans, chosen } = set;
   const outcomes = report?.outcomes ?? null;
-  const deepest = plans.reduce((most, { plan }) => Math.max(most, plan.steps.length), 1);
+  const deepest = plans[chosen]?.plan.steps.length ?? 1;
+  // While figures are awaited the columns stay where they were.
+  const lastOrder = useRef<number[]>([]);
+  if (outcomes) lastOrder.current = orderOf(outcomes);
+  const order = lastOrder.current.length === plans.length ? lastOrder.current : plans.map((_, k) => k);
   const marginal = outcomes ? marginalOf(set, outcomes) : [];
+  const nameOf = (k: number) => plans[k]?.name ?? "";
   const row = (label: string, unit: string, cell: (k: number) => string) => ({ label, unit, cell });
   const rows = [
     ...Array.from({ length: deepest }, (_, s) => {
@@ -50,7 +56,9 @@ export function AlternativesTable({
       return [
         row(`Window at ${before}`, "kcal/mol", (k) => {
           const step = outcomes?.[k]?.steps[s];
-          return step ? (step.windowKcal === null ? "all" : formatEnergy(step.windowKcal)) : ABSENT;
+          const cut = plans[k]?.plan.steps[s]?.cut;
+          if (!step || !cut) return ABSENT;
+          return step.windowKcal === null ? "all" : windowFigure(cut, step);
         }),
         row(`To ${name}`, "structures", (k) => {
           const step = outcomes?.[k]?.steps[s];
@@ -62,7 +70,10 @@ export function AlternativesTable({
       const [plan, outcome] = [plans[k]?.plan, outcomes?.[k]];
       return plan && outcome ? costFigure(plan, outcome) : ABSENT;
     }),
-    row("Waiting", "hours", (k) => (outcomes?.[k] ? formatHours(outcomes[k].wall) : ABSENT)),
+    row("Waiting", "hours", (k) => {
+      const [plan, outcome] = [plans[k]?.plan, outcomes?.[k]];
+      return plan && outcome ? waitingFigure(plan, outcome) : ABSENT;
+    }),
     row("Population kept", "%, expected", (k) => formatPopulation(outcomes?.[k]?.kept.mean)),
     row("Population lost", "%, expected", (k) => {
       const kept = outcomes?.[k]?.kept.mean;
@@ -126,16 +137,16 @@ export function AlternativesTable({
               <Th>
                 <span className="sr-only">Figure</span>
               </Th>
-              {plans.map(({ name }, k) => (
+              {order.map((k) => (
                 <Th
                   key={k}
                   align="right"
                   className={`max-sm:px-1 ${k === chosen ? "border-t-3! border-t-mark! bg-mark-wash text-ink!" : ""}`}
                 >
                   <span className="inline-flex items-center gap-1 max-sm:flex-col max-sm:items-end">
-                    {name}
+                    {nameOf(k)}
                     {readOnly || plans.length === 1 ? null : (
-                      <IconButton label={`Leave out ${name}`} onClick={() => remove(k)}>
+                      <IconButton label={`Leave out ${nameOf(k)}`} onClick={() => remove(k)}>
                         <X aria-hidden="true" />
                       </IconButton>
                     )}
@@ -148,7 +159,7 @@ export function AlternativesTable({
                         className="inline-flex min-h-6 min-w-6 items-center pointer-coarse:min-h-11"
                         onClick={() => onChange({ ...set, chosen: k })}
                       >
-                        Take<span className="sr-only"> {name}</span>
+                        Take<span className="sr-only"> {nameOf(k)}</span>
                       </TextButton>
                     )}
                   </span>
@@ -162,7 +173,7 @@ export function AlternativesTable({
                 <Td wrap className="max-sm:px-1">
                   {label} <span className="text-ink-3">{unit}</span>
                 </Td>
-                {plans.map((_, k) => (
+                {order.map((k) => (
                   <Td
                     key={k}
                     align="right"

@@ -2,7 +2,7 @@ import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, Plot, usePlot } from "~/components/charts/plot";
 import { formatPercent, withUnit } from "~/lib/format";
 import type { FrontPoint } from "~/lib/plan/front";
-import { marginalCosts } from "~/lib/plan/front";
+import { keptOrder, marginalCosts } from "~/lib/plan/front";
 import type { PlanSet } from "~/lib/plan/plan";
 import type { PlansReport } from "~/lib/plan/report";
 import { formatHours } from "~/lib/plan/words";
@@ -19,14 +19,11 @@ interface Placed {
 export function CostChart({ set, report }: { set: PlanSet; report: PlansReport }) {
   const figures = report.outcomes.map((o) => ({ kept: o.kept.mean, cost: o.cost }));
   const each = marginalCosts(figures);
-  const placed = figures
-    .map((figure, k) => ({
-      ...figure,
-      name: set.plans[k]?.name ?? "",
-      each: each[k] ?? null,
-      chosen: k === set.chosen,
-    }))
-    .sort((a, b) => a.kept - b.kept || a.cost - b.cost);
+  const placed = keptOrder(figures).flatMap((k): Placed[] => {
+    const figure = figures[k];
+    const name = set.plans[k]?.name ?? "";
+    return figure ? [{ ...figure, name, each: each[k] ?? null, chosen: k === set.chosen }] : [];
+  });
   const least = Math.min(...placed.map((p) => 100 * p.kept));
   const low = Math.max(0, Math.min(80, 10 * Math.floor((least - 3) / 10)));
   const high = 1.12 * Math.max(...placed.map((p) => p.cost), 1e-9);

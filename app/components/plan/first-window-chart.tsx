@@ -1,12 +1,14 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, Plot, usePlot } from "~/components/charts/plot";
-import { formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
+import { formatPercent, formatWindowToCarry, plural, withUnit } from "~/lib/format";
+import { nextWindow } from "~/lib/levels/window";
 import { bandWithin, type WindowBand } from "~/lib/levels/window-band";
 
 /** Population kept at the end against the first window, with its 95 % range behind. */
 export function FirstWindowChart({
   band,
   windowKcal,
+  figure,
   startName,
   ordinal,
   lastName,
@@ -14,6 +16,8 @@ export function FirstWindowChart({
   band: WindowBand;
   /** null carries all. */
   windowKcal: number | null;
+  /** The window in digits. */
+  figure: string;
   startName: string;
   ordinal: number;
   lastName: string;
@@ -51,10 +55,10 @@ export function FirstWindowChart({
         points={shown.map((s) => ({
           x: s.kcal,
           y: 100 * s.mean,
-          label: `${withUnit(formatEnergy(s.kcal), "kcal/mol")}: ${plural(s.count, "conformer")}, ${formatPercent(s.mean, 1)} kept, ${formatPercent(s.low)} to ${formatPercent(s.high)}`,
+          label: `${withUnit(formatWindowToCarry(s.kcal, nextWindow(band.steps, s.kcal)), "kcal/mol")}: ${plural(s.count, "conformer")}, ${formatPercent(s.mean, 1)} kept, ${formatPercent(s.low)} to ${formatPercent(s.high)}`,
         }))}
       >
-        <StepLayer shown={shown} at={at} windowKcal={windowKcal} top={top} />
+        <StepLayer shown={shown} at={at} windowKcal={windowKcal} figure={figure} top={top} />
       </Plot>
     </ChartFrame>
   );
@@ -64,11 +68,14 @@ function StepLayer({
   shown,
   at,
   windowKcal,
+  figure,
   top,
 }: {
   shown: WindowBand["steps"];
   at: WindowBand["steps"][number] | null;
   windowKcal: number | null;
+  /** The window in digits. */
+  figure: string;
   top: number;
 }) {
   const plot = usePlot();
@@ -91,7 +98,7 @@ function StepLayer({
           <path d={`M${px} ${plot.top}V${plot.bottom}`} stroke="var(--color-mark)" strokeDasharray="5 4" />
           <circle cx={px} cy={plot.y(100 * at.mean)} r={4} fill="var(--color-mark)" />
           {[
-            `${formatEnergy(windowKcal)}, ${plural(at.count, "conformer")}`,
+            `${figure}, ${plural(at.count, "conformer")}`,
             `keeps ${formatPercent(at.mean, 1)}`,
             `95 % range ${(100 * at.low).toFixed(1)} to ${(100 * at.high).toFixed(1)}`,
           ].map((text, k) => (

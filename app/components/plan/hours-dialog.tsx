@@ -4,7 +4,7 @@ import { Dialog, DialogFoot } from "~/components/ui/dialog";
 import { TextField } from "~/components/ui/field";
 import { SelectField } from "~/components/ui/select-field";
 import { TextButton } from "~/components/ui/text-link";
-import { plural, readTyped } from "~/lib/format";
+import { fixed, plural, readTyped } from "~/lib/format";
 import { hoursEach, RULES } from "~/lib/plan/hours";
 import { type HoursSource, hoursSchema } from "~/lib/plan/plan";
 import { formatHours } from "~/lib/plan/words";
@@ -189,6 +189,6 @@ function madeWords(source: HoursSource, atoms: number): string {
   if (source.from === "known") return "0 core hours: the energies are there.";
   if (source.from === "unknown") return "The cost leaves this step out until the hours are set.";
   const { hours, exponent, fitted } = hoursEach(source, atoms);
-  const power = exponent === null ? "" : `, power ${exponent.toFixed(2)}${fitted ? " fitted" : ""}`;
+  const power = exponent === null ? "" : `, power ${fixed(exponent, 2)}${fitted ? " fitted" : ""}`;
   return `${formatHours(hours)} core hours for ${plural(atoms, "atom")}${power}.`;
 }

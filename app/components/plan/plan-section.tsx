@@ -17,9 +17,10 @@ import { useWorkbench } from "~/components/workbench/workbench-context";
 import { plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
 import type { LevelEnergiesView, Member } from "~/lib/levels/level-energies";
+import { alignPlans, withChosen } from "~/lib/plan/chain";
 import type { Plan, PlanSet } from "~/lib/plan/plan";
 import { firstPlans } from "~/lib/plan/start";
-import { planAssumptions, planFinding, planText } from "~/lib/plan/words";
+import { hoursOpen, planAssumptions, planFinding, planText, windowFigure } from "~/lib/plan/words";
 import type { RemovedPlan, SavedPlans } from "~/services/plans/list-plans.server";
 import { AlternativesTable } from "./alternatives-table";
 import { CostChart } from "./cost-chart";
@@ -79,7 +80,7 @@ function Planned({
   const { ensemble, sift, state } = useWorkbench();
   const fresh = () =>
     firstPlans(first, { sift: sift?.id ?? null, temperatureK: state.temperatureK, n: members.length });
-  const shownAs = (one: SavedPlans | null) => ({ set: one?.plans ?? fresh(), open: one });
+  const shownAs = (one: SavedPlans | null) => ({ set: one ? alignPlans(one.plans) : fresh(), open: one });
   const { draft, unsaved, edit: setSet, show } = usePlanDraft(ensemble.id, () => shownAs(saved[0] ?? null));
   const { set, open } = draft;
   const figures = usePlanReport(set, levels, members, ensemble.atoms);
@@ -100,8 +101,6 @@ function Planned({
   if (!plan) return null;
   const startLevel = levels.find((one) => one.id === plan.start);
   const start = startLevel?.name ?? "a level that is gone";
-  const change = (next: Plan) =>
-    setSet({ ...set, plans: set.plans.map((one, k) => (k === set.chosen ? { ...one, plan: next } : one)) });
   const outcome = figures.report?.outcomes[set.chosen] ?? null;
   const finding = outcome ? planFinding(plan, start, outcome, figures.report?.front ?? null) : null;
   return (
@@ -155,15 +154,18 @@ function Planned({
         )}
         temperaturesK={[plan.temperatureK]}
       />
-      {readOnly ? null : <PlanSettings plan={plan} onChange={(part) => change({ ...plan, ...part })} />}
+      {readOnly ? null : (
+        <PlanSettings plan={plan} onChange={(part) => setSet(withChosen(set, { ...plan, ...part }))} />
+      )}
       <StepsTable
+        set={set}
         plan={plan}
         levels={levels}
         atoms={ensemble.atoms}
         conformers={figures.members.length}
         outcome={outcome}
         readOnly={readOnly}
-        onChange={change}
+        onChange={setSet}
       />
       <FigureFacts
         facts={[
@@ -207,25 +209,30 @@ function PlanCharts({
 }) {
   const plan = set.plans[set.chosen]?.plan;
   const { report, band } = figures;
+  const firstStep = report?.outcomes[set.chosen]?.steps[0] ?? null;
+  const firstCut = plan?.steps[0]?.cut ?? null;
   if (figures.members.length === 0 || !plan) return null;
   return (
     <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2" aria-busy={report === null || band === null}>
       {report === null ? (
         <Skeleton className="h-96 w-full" />
-      ) : report.outcomes.some(({ cost }) => cost > 0) ? (
+      ) : !hoursOpen(plan) && report.outcomes.some(({ cost }) => cost > 0) ? (
         <CostChart set={set} report={report} />
       ) : (
         <StatePanel title="No cost to draw">
           <p>
-            The energies of these steps are known, or their core hours are not. Set core hours under Each to
-            see what a share of the population costs.
+            {hoursOpen(plan)
+              ? "The core hours of a step are not known."
+              : "The energies of these steps are known: nothing is left to compute."}{" "}
+            Set core hours under Each to see what a share of the population costs.
           </p>
         </StatePanel>
       )}
       {band ? (
         <FirstWindowChart
           band={band}
-          windowKcal={report?.outcomes[set.chosen]?.steps[0]?.windowKcal ?? null}
+          windowKcal={firstStep?.windowKcal ?? null}
+          figure={firstStep && firstCut ? windowFigure(firstCut, firstStep) : ""}
           startName={startName}
           ordinal={ordinal}
           lastName={plan.steps.at(-1)?.name ?? ""}

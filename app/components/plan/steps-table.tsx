@@ -16,20 +16,24 @@ import {
   formatEnergy,
   formatPercent,
   formatPopulation,
+  formatWindowAsSet,
   plural,
   trimmed,
+  windowToCarry,
   withUnit,
 } from "~/lib/format";
+import { carriedOn, withChosen, withoutStep, withStep } from "~/lib/plan/chain";
 import type { PlanOutcome, StepOutcome } from "~/lib/plan/evaluate";
 import { defaultHours } from "~/lib/plan/hours";
-import { type Cut, MAX_STEPS, type Plan, type PlanStep } from "~/lib/plan/plan";
-import { costFigure, formatHours, planCsv } from "~/lib/plan/words";
+import { type Cut, MAX_STEPS, type Plan, type PlanSet, type PlanStep } from "~/lib/plan/plan";
+import { costFigure, formatHours, planCsv, waitingFigure, windowFigure } from "~/lib/plan/words";
 import { HoursDialog } from "./hours-dialog";
 
 const BAR_PX = 120;
 
 /** The chain of levels in order of work: who is carried, what it costs, what is kept. */
 export function StepsTable({
+  set,
   plan,
   levels,
   atoms,
@@ -38,28 +42,42 @@ export function StepsTable({
   readOnly,
   onChange,
 }: {
+  /** All plans go through the same steps: one that is added or removed is so in all of them. */
+  set: PlanSet;
+  /** The one at hand. */
   plan: Plan;
   levels: readonly LevelData[];
   atoms: number;
   conformers: number;
   outcome: PlanOutcome | null;
   readOnly: boolean;
-  onChange: (plan: Plan) => void;
+  onChange: (set: PlanSet) => void;
 }) {
   const start = levels.find((level) => level.id === plan.start);
   const most = Math.max(1e-12, ...(outcome?.steps.map((step) => step.cost) ?? []));
   const setStep = (at: number, part: Partial<PlanStep>) =>
-    onChange({ ...plan, steps: plan.steps.map((step, k) => (k === at ? { ...step, ...part } : step)) });
-  // The toast may act on a plan that was changed after it was shown.
-  const latest = useRef({ plan, onChange });
-  latest.current = { plan, onChange };
+    onChange(
+      withChosen(set, {
+        ...plan,
+        steps: plan.steps.map((step, k) => (k === at ? { ...step, ...part } : step)),
+      }),
+    );
+  // The toast may act on plans that were changed after it was shown.
+  const latest = useRef({ set, plan, onChange });
+  latest.current = { set, plan, onChange };
   const remove = (at: number) => {
     const gone = plan.steps[at];
-    onChange({ ...plan, steps: plan.steps.filter((_, k) => k !== at) });
+    onChange(withoutStep(set, at));
     if (!gone) return;
+    const cuts = new Map(
+      set.plans.flatMap(({ name, plan: one }): [string, Cut][] => {
+        const step = one.steps[at];
+        return step ? [[name, step.cut]] : [];
+      }),
+    );
     const back = () => {
-      const { plan: now, onChange: change } = latest.current;
-      if (now.steps.length < MAX_STEPS) change({ ...now, steps: now.steps.toSpliced(at, 0, gone) });
+      const { set: now, plan: shown, onChange: change } = latest.current;
+      if (shown.steps.length < MAX_STEPS) change(withStep(now, at, gone, cuts));
     };
     showToast({
       tone: "done",
@@ -75,7 +93,7 @@ export function StepsTable({
           <Button
             size="sm"
             icon={<Plus aria-hidden="true" />}
-            onClick={() => onChange({ ...plan, steps: [...plan.steps, nextStep(plan)] })}
+            onClick={() => onChange(withStep(set, plan.steps.length, nextStep(plan)))}
           >
             Step
           </Button>
@@ -124,7 +142,9 @@ export function StepsTable({
                     hideLabel
                     className="w-40 min-w-0 max-xl:w-34"
                     value={plan.start}
-                    onChange={(event) => onChange({ ...plan, start: event.currentTarget.value })}
+                    onChange={(event) =>
+                      onChange(withChosen(set, { ...plan, start: event.currentTarget.value }))
+                    }
                     choices={levels.map(({ id, name }) => ({ value: id, label: name }))}
                   />
                 )}
@@ -153,7 +173,7 @@ export function StepsTable({
             <Td wrap>
               Together
               <span className="block text-xs text-ink-3">
-                {outcome ? `${withUnit(formatHours(outcome.wall), "hours")} of waiting on ` : "on "}
+                {outcome ? waitingWords(waitingFigure(plan, outcome)) : "on "}
                 {plural(plan.slots, "slot")} of {plural(plan.coresPerSlot, "core")},{" "}
                 {formatPercent(plan.failRate)} repeated
                 <span className="sm:hidden">
@@ -185,12 +205,14 @@ export function StepsTable({
   );
 }
 
+const waitingWords = (figure: string) =>
+  figure === "not known" ? "waiting not known, on " : `${withUnit(figure, "hours")} of waiting on `;
+
 function nextStep(plan: Plan): PlanStep {
-  const last = plan.steps.at(-1);
   return {
     level: null,
     name: "next level",
-    cut: { by: "share", share: last?.cut.by === "share" ? last.cut.share : 0.95 },
+    cut: carriedOn(plan, { by: "share", share: 0.95 }),
     hours: defaultHours("next level", false),
     sigma: 0.3,
   };
@@ -377,7 +399,9 @@ function CutFields({
   const takes =
     cut.by === "share" ? (
       <span className="block text-xs text-ink-3">
-        {window === null ? "window follows" : `${withUnit(formatEnergy(window), "kcal/mol")}`}
+        {outcome === null || window === null
+          ? "window follows"
+          : withUnit(windowFigure(cut, outcome), "kcal/mol")}
       </span>
     ) : null;
   if (readOnly) {
@@ -385,7 +409,7 @@ function CutFields({
     return (
       <>
         {cut.by === "window"
-          ? withUnit(formatEnergy(cut.kcal), "kcal/mol")
+          ? withUnit(formatWindowAsSet(cut.kcal), "kcal/mol")
           : withUnit(trimmed(100 * cut.share, 2), "%")}
         {takes}
       </>
@@ -398,7 +422,7 @@ function CutFields({
         hideLabel
         className="w-28"
         value={cut.by}
-        onChange={(event) => onChange(switchCut(event.currentTarget.value, window))}
+        onChange={(event) => onChange(switchCut(event.currentTarget.value, outcome))}
         choices={[
           { value: "window", label: "Window" },
           { value: "share", label: "Share" },
@@ -415,7 +439,7 @@ function CutFields({
           max={1000}
           step={0.1}
           unit="kcal/mol"
-          write={formatEnergy}
+          write={formatWindowAsSet}
           wrong="A window lies between 0 and 1,000 kcal/mol."
           onCommit={(kcal) => onChange({ by: "window", kcal: kcal ?? 0 })}
         />
@@ -440,7 +464,11 @@ function CutFields({
   );
 }
 
-function switchCut(by: string, windowKcal: number | null): Cut {
-  if (by === "window") return { by: "window", kcal: Number((windowKcal ?? 3).toFixed(2)) };
+function switchCut(by: string, outcome: StepOutcome | null): Cut {
+  if (by === "window") {
+    // Rounded up, as it was printed beside the share: the numbers carried and kept stay what they were.
+    const window = outcome?.windowKcal ?? null;
+    return { by: "window", kcal: window === null ? 3 : windowToCarry(window, outcome?.nextKcal) };
+  }
   return by === "share" ? { by: "share", share: 0.95 } : { by: "all" };
 }

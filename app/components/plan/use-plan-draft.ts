@@ -1,5 +1,6 @@
 import { useCallback, useEffect, useState } from "react";
 import { z } from "zod";
+import { alignPlans } from "~/lib/plan/chain";
 import { type PlanSet, planSetSchema } from "~/lib/plan/plan";
 import type { OpenPlan } from "./save-plan";
 
@@ -65,7 +66,7 @@ function readDraft(key: string): PlanDraft | null {
   try {
     const text = window.sessionStorage.getItem(key);
     const read = draftSchema.safeParse(text === null ? null : JSON.parse(text));
-    return read.success ? read.data : null;
+    return read.success ? { ...read.data, set: alignPlans(read.data.set) } : null;
   } catch {
     // A browser that keeps nothing, or a text that is no draft.
     return null;

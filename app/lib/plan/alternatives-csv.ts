@@ -1,10 +1,13 @@
 import { toCsv } from "../workbench/tsv.ts";
 import type { PlanOutcome } from "./evaluate.ts";
-import { marginalCosts } from "./front.ts";
-import type { Plan, PlanSet } from "./plan.ts";
+import { keptOrder, marginalCosts } from "./front.ts";
+import type { PlanSet } from "./plan.ts";
+import { hoursOpen } from "./words.ts";
 
-/** True where the hours of a step are not known: such a plan has no cost to compare. */
-const open = (plan: Plan) => plan.steps.some(({ hours }) => hours.from === "unknown");
+/** Places of the plans of a set by rising share kept. */
+export function orderOf(outcomes: readonly PlanOutcome[]): number[] {
+  return keptOrder(outcomes.map(({ kept, cost }) => ({ kept: kept.mean, cost })));
+}
 
 /**
  * Core hours of each further percent between the plans of a set whose costs are known.
@@ -13,13 +16,13 @@ const open = (plan: Plan) => plan.steps.some(({ hours }) => hours.from === "unkn
  * @returns by place; null as in `marginalCosts`, and for a plan without a known cost
  */
 export function marginalOf({ plans }: PlanSet, outcomes: readonly PlanOutcome[]): (number | null)[] {
-  const places = plans.flatMap(({ plan }, k) => (open(plan) ? [] : [k]));
+  const places = plans.flatMap(({ plan }, k) => (hoursOpen(plan) ? [] : [k]));
   const costs = marginalCosts(places.map((k) => ({ kept: outcomes[k]!.kept.mean, cost: outcomes[k]!.cost })));
   return plans.map((_, k) => costs[places.indexOf(k)] ?? null);
 }
 
 /**
- * Plans side by side, a row each: windows and structures of every step, cost, waiting, population kept and lost, and the
+ * Plans side by side, a row each by rising share kept: windows and structures of every step, cost, waiting, population kept and lost, and the
  * core hours of each further percent. Costs are empty where the hours of a step are not known.
  *
  * @param outcomes one a plan, in the order of the set
@@ -43,7 +46,8 @@ export function alternativesCsv(set: PlanSet, outcomes: readonly PlanOutcome[]):
       "lowest kept [% of the draws]",
       "each percent above the last [core hours]",
     ],
-    plans.map(({ name, plan }, k) => {
+    orderOf(outcomes).map((k) => {
+      const { name, plan } = plans[k]!;
       const outcome = outcomes[k]!;
       const { kept } = outcome;
       return [
@@ -53,7 +57,7 @@ export function alternativesCsv(set: PlanSet, outcomes: readonly PlanOutcome[]):
           const [step, of] = [plan.steps[s], outcome.steps[s]];
           return step && of ? [step.name, of.windowKcal ?? "all", of.carried.mean] : ["", null, null];
         }),
-        ...(open(plan) ? [null, null] : [outcome.cost, outcome.wall]),
+        ...(hoursOpen(plan) ? [null, null] : [outcome.cost, outcome.wall]),
         100 * kept.mean,
         100 * kept.low,
         100 * kept.high,

@@ -1,5 +1,5 @@
 import { fromLowest } from "../levels/compare.ts";
-import { narrowestWindow, windowCurve } from "../levels/window.ts";
+import { narrowestWindow, nextWindow, windowCurve } from "../levels/window.ts";
 import { GENERATOR_NAME, generator } from "../stats/random.ts";
 import { type DrawnFigure, type DrawRecipe, summariseDraws } from "../trust/drawn-figures.ts";
 import { thermalEnergyKcal } from "../units.ts";
@@ -23,6 +23,8 @@ export interface StepOutcome {
   carried: DrawnFigure;
   /** Window at the level before, kcal/mol; null for all. */
   windowKcal: number | null;
+  /** Window that would take in one conformer more there; Infinity where none is left. */
+  nextKcal: number;
   hoursEach: number;
   exponent: number | null;
   exponentFitted: boolean;
@@ -65,6 +67,7 @@ export function evaluatePlan(plan: Plan, data: PlanData): PlanOutcome {
     if (list !== null && list.length !== n) throw new RangeError(`${n} conformers against ${list.length}.`);
   }
   const windows = resolveCuts(plan, data);
+  const before = expectedChain(data);
   const steps = plan.steps.length;
   const record = () => Array.from({ length: steps }, () => new Float64Array(plan.draws));
   const ins = record();
@@ -91,6 +94,7 @@ export function evaluatePlan(plan: Plan, data: PlanData): PlanOutcome {
       in: summariseDraws(ins[s]!),
       carried: number,
       windowKcal: windows[s]!,
+      nextKcal: nextWindow(windowCurve(before[s]!, data.weights), windows[s] ?? Number.POSITIVE_INFINITY),
       hoursEach: each.hours,
       exponent: each.exponent,
       exponentFitted: each.fitted,

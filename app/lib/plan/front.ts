@@ -79,19 +79,36 @@ function unbeaten(points: FrontPoint[]): FrontPoint[] {
   return front;
 }
 
+/** Shares closer than this are the same share, summed in another order. */
+const SAME_SHARE = 1e-11;
+
+/**
+ * Places of plans by rising share kept, the cheaper one first where two keep the same.
+ *
+ * @example keptOrder([{ kept: 0.95, cost: 74 }, { kept: 0.9, cost: 60 }]) // [1, 0]
+ */
+export function keptOrder(plans: readonly { kept: number; cost: number }[]): number[] {
+  const share = plans.map(({ kept }) => Math.round(kept / SAME_SHARE));
+  return plans
+    .map((_, k) => k)
+    .sort((a, b) => share[a]! - share[b]! || plans[a]!.cost - plans[b]!.cost || a - b);
+}
+
 /**
  * Core hours for each further percent of the population between plans, in order of what they keep.
  *
- * @returns by place in the list given; null for the one that keeps least, and where a plan keeps no more than the one before
+ * @returns by place in the list given; null for the one that keeps least, and where a plan keeps no more than the one
+ *   before or costs less than it
  * @example marginalCosts([{ kept: 0.9, cost: 60 }, { kept: 0.95, cost: 74 }]) // [null, 2.8]
  */
 export function marginalCosts(plans: readonly { kept: number; cost: number }[]): (number | null)[] {
-  const order = plans.map((_, k) => k).sort((a, b) => plans[a]!.kept - plans[b]!.kept || a - b);
+  const order = keptOrder(plans);
   const found: (number | null)[] = plans.map(() => null);
   for (let k = 1; k < order.length; k++) {
     const [low, high] = [plans[order[k - 1]!]!, plans[order[k]!]!];
     const gain = 100 * (high.kept - low.kept);
-    if (gain > 1e-9) found[order[k]!] = (high.cost - low.cost) / gain;
+    const more = high.cost - low.cost;
+    if (gain > 100 * SAME_SHARE && more >= 0) found[order[k]!] = more / gain;
   }
   return found;
 }

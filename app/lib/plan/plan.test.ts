@@ -1,5 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
+import { windowToCarry } from "../format.ts";
 import { compareLevels } from "../levels/compare.ts";
 import { alternativesCsv } from "./alternatives-csv.ts";
 import { evaluatePlan, type PlanData } from "./evaluate.ts";
@@ -8,7 +9,15 @@ import { defaultHours, hoursEach, RULES } from "./hours.ts";
 import { type Plan, type PlanStep, planSetSchema } from "./plan.ts";
 import { planReport } from "./report.ts";
 import { drawsOfPlan, firstPlans } from "./start.ts";
-import { costFigure, formatHours, planAssumptions, planCsv, planFinding, planText } from "./words.ts";
+import {
+  costFigure,
+  formatHours,
+  planAssumptions,
+  planCsv,
+  planFinding,
+  planText,
+  windowFigure,
+} from "./words.ts";
 
 const T = 298.15;
 const CHEAP = [0.3, 0, 1.4, 1.1, 2.9, 2.5];
@@ -93,6 +102,21 @@ describe("six conformers, energies exact (worked by hand)", () => {
     // Four jobs on eight slots are one round of 3.4 core hours on 4 cores.
     expect(found.wall).toBeCloseTo((3.4 * 1.04) / 4, 10);
     expect(found.lowestKept).toBe(1);
+  });
+
+  it("prints the window of a share so that these digits carry as many and keep as much", () => {
+    const odd = data({ start: [0.3, 0, 1.404877, 1.1, 2.9, 2.5] });
+    const share = plan({ steps: [step({ cut: { by: "share", share: 0.95 } })] });
+    const found = evaluatePlan(share, odd);
+    const first = found.steps[0]!;
+    expect([first.windowKcal, first.nextKcal]).toEqual([1.404877, 2.5]);
+    expect(windowFigure(share.steps[0]!.cut, first)).toBe("1.41");
+    expect(plain(planFinding(share, "Cheap", found, null).text)).toContain("Carry 1.41 kcal/mol of Cheap");
+    const kcal = windowToCarry(first.windowKcal!, first.nextKcal);
+    const set = evaluatePlan(plan({ steps: [step({ cut: { by: "window", kcal } })] }), odd);
+    expect(set.steps[0]!.carried).toEqual(first.carried);
+    expect(set.kept).toEqual(found.kept);
+    expect(windowFigure({ by: "window", kcal: 1.4005 }, first)).toBe("1.4005");
   });
 
   it("finds the window of a share", () => {

@@ -5,29 +5,41 @@ import {
   formatEnergy,
   formatPercent,
   formatTemperature,
+  formatWindowAsSet,
+  formatWindowToCarry,
+  MINUS,
   plural,
   trimmed,
   withUnit,
 } from "../format.ts";
 import { shareWords } from "../workbench/findings.ts";
 import { toCsv } from "../workbench/tsv.ts";
-import type { PlanOutcome } from "./evaluate.ts";
+import type { PlanOutcome, StepOutcome } from "./evaluate.ts";
 import type { FrontPoint } from "./front.ts";
 import { RULES } from "./hours.ts";
-import type { HoursSource, Plan } from "./plan.ts";
+import type { Cut, HoursSource, Plan } from "./plan.ts";
 import type { PlansReport } from "./report.ts";
 
 /** Core hours as one would say them. */
 export function formatHours(hours: number): string {
   if (hours === 0) return "0";
+  if (hours < 0) return `${MINUS}${formatHours(-hours)}`;
   if (hours >= 99.5) return formatCount(Math.round(hours));
   if (hours >= 9.95) return trimmed(hours, 1);
   if (hours >= 0.01) return fixed(hours, 2);
-  return String(Number(hours.toPrecision(2)));
+  return trimmed(hours, Math.min(20, 1 - Math.floor(Math.log10(hours))));
 }
 
 const coreHours = (hours: number) => withUnit(formatHours(hours), "core hours");
 const kcal = (value: number) => withUnit(formatEnergy(value), "kcal/mol");
+
+/**
+ * The window of a step in kcal/mol, without the unit: as it was set, or, read off for a share, rounded up so that the
+ * printed number carries who is said to be carried. An en dash where all are carried.
+ */
+export function windowFigure(cut: Cut, { windowKcal, nextKcal }: StepOutcome): string {
+  return cut.by === "window" ? formatWindowAsSet(cut.kcal) : formatWindowToCarry(windowKcal, nextKcal);
+}
 
 /**
  * What a plan costs, in core hours: 0 where all its energies are known; "not known" or "at least" where hours of a step are.
@@ -35,9 +47,25 @@ const kcal = (value: number) => withUnit(formatEnergy(value), "kcal/mol");
  * @example costFigure(plan, outcome) // "at least 10.6"
  */
 export function costFigure(plan: Plan, outcome: PlanOutcome): string {
-  if (!plan.steps.some(({ hours }) => hours.from === "unknown")) return formatHours(outcome.cost);
-  return outcome.cost > 0 ? `at least ${formatHours(outcome.cost)}` : "not known";
+  return figureOf(plan, outcome.cost);
 }
+
+/**
+ * Hours that a plan waits for its jobs, with the same words as its cost.
+ *
+ * @example waitingFigure(plan, outcome) // "not known"
+ */
+export function waitingFigure(plan: Plan, outcome: PlanOutcome): string {
+  return figureOf(plan, outcome.wall);
+}
+
+function figureOf(plan: Plan, hours: number): string {
+  if (!hoursOpen(plan)) return formatHours(hours);
+  return hours > 0 ? `at least ${formatHours(hours)}` : "not known";
+}
+
+/** True where the hours of a step are not known: such a plan has no cost to weigh. */
+export const hoursOpen = (plan: Plan) => plan.steps.some(({ hours }) => hours.from === "unknown");
 
 /** Nothing is left to compute. */
 const costsNothing = (plan: Plan) => plan.steps.every(({ hours }) => hours.from === "known");
@@ -51,14 +79,14 @@ function costWords(plan: Plan, outcome: PlanOutcome): string {
 /** What the plan says first. */
 export function planFinding(plan: Plan, startName: string, outcome: PlanOutcome, front: FrontPoint[] | null) {
   const parts = plan.steps.map((step, s) => {
-    const window = outcome.steps[s]!.windowKcal;
+    const window = windowFigure(step.cut, outcome.steps[s]!);
     const from = s === 0 ? startName : plan.steps[s - 1]!.name;
     const what =
-      window === null
+      outcome.steps[s]!.windowKcal === null
         ? `everything of ${from}`
         : s === 0
-          ? `${kcal(window)} of ${from}`
-          : formatEnergy(window);
+          ? `${withUnit(window, "kcal/mol")} of ${from}`
+          : window;
     return `${what} to ${step.name}`;
   });
   const counts = outcome.steps.map((step) => formatCount(Math.round(step.carried.mean)));
@@ -84,7 +112,7 @@ function joinCounts(counts: readonly string[]): string {
 /** What 99 % would cost beyond this plan, from the cheapest windows that reach it. */
 function furtherWords(plan: Plan, outcome: PlanOutcome, front: FrontPoint[] | null): string {
   // Without a cost, or with a part of it, there is nothing to weigh.
-  if (costsNothing(plan) || plan.steps.some(({ hours }) => hours.from === "unknown")) return "";
+  if (costsNothing(plan) || hoursOpen(plan)) return "";
   const target = 0.99;
   const at = front?.find((point) => point.kept >= target);
   if (!at || outcome.kept.mean >= target) return "";
@@ -200,7 +228,7 @@ export function planText(plan: Plan, startName: string, outcome: PlanOutcome, of
     const who =
       windowKcal === null
         ? `All conformers (${number})`
-        : `${s === 0 ? "All conformers" : "Those"} within ${kcal(windowKcal)} of the lowest at ${before} (${number} of ${s === 0 ? formatCount(of) : formatCount(Math.round(outcome.steps[s - 1]!.carried.mean))})`;
+        : `${s === 0 ? "All conformers" : "Those"} within ${withUnit(windowFigure(step.cut, outcome.steps[s]!), "kcal/mol")} of the lowest at ${before} (${number} of ${s === 0 ? formatCount(of) : formatCount(Math.round(outcome.steps[s - 1]!.carried.mean))})`;
     return step.hours.from === "known"
       ? `${who} are carried to ${step.name}, where their energies are known.`
       : `${who} are to be computed at ${step.name}.`;
@@ -252,8 +280,7 @@ export function planCsv(plan: Plan, startName: string, outcome: PlanOutcome): st
     ];
   });
   const { kept } = outcome;
-  const open = plan.steps.some(({ hours }) => hours.from === "unknown");
-  const total = open ? [null, null] : [outcome.cost, outcome.wall];
+  const total = hoursOpen(plan) ? [null, null] : [outcome.cost, outcome.wall];
   const sum = ["", "together", null, "", "", null, null, null, null, null, ...total];
   return toCsv(
     [
