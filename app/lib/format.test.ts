@@ -19,6 +19,8 @@ import {
   formatRmsd,
   formatSeconds,
   formatTemperature,
+  formatWindowAsSet,
+  formatWindowToCarry,
   formulaParts,
   plural,
   pluralWord,
@@ -28,6 +30,7 @@ import {
   rmsdsBeside,
   signed,
   trimmed,
+  windowToCarry,
   withUnit,
 } from "./format.ts";
 
@@ -219,5 +222,43 @@ describe("depthStep", () => {
   it("breaks at 1, 2, 5, 10, 20 and 40 per cent, the break belonging to the deeper tint", () => {
     const steps = [0.0099, 0.01, 0.02, 0.05, 0.1, 0.2, 0.4, 1].map(depthStep);
     expect(steps).toEqual([1, 2, 3, 4, 5, 6, 7, 7]);
+  });
+});
+
+describe("windows to carry", () => {
+  it.each([
+    [2.040877, "2.05"],
+    [6.084513, "6.09"],
+    [2.04, "2.04"],
+    [1.1, "1.10"],
+    [0.29, "0.29"],
+    [0, "0.00"],
+    [1234.501, "1,234.51"],
+    // A difference of energies that lies a rounding above what its digits say would be lost at these digits.
+    [3.06 + 2 ** -51, "3.07"],
+    // One that lies a rounding below them is held by them.
+    [5.1 - 3.06, "2.04"],
+  ])("%f is printed %s: up at the last digit", (kcal, text) => {
+    expect(formatWindowToCarry(kcal)).toBe(text);
+  });
+
+  it("hold the conformer they were read off from and not the next one", () => {
+    const energy = fc.double({ min: 0, max: 50, noNaN: true });
+    fc.assert(
+      fc.property(energy, fc.double({ min: 2e-6, max: 3, noNaN: true }), (kcal, gap) => {
+        const carried = windowToCarry(kcal, kcal + gap);
+        expect(carried).toBeGreaterThanOrEqual(kcal);
+        expect(carried).toBeLessThan(kcal + gap);
+        expect(Number(formatWindowToCarry(kcal, kcal + gap))).toBe(carried);
+      }),
+      { seed: 20261202, numRuns: 500 },
+    );
+  });
+
+  it("take further decimals where two would let in the next conformer, and as many as were set", () => {
+    expect(formatWindowToCarry(2.040877, 2.045)).toBe("2.041");
+    expect(formatWindowToCarry(2.0408771234, 2.0408771235)).toBe("2.05");
+    expect(formatWindowToCarry(null)).toBe("\u2013");
+    expect([2.5, 2.041, 0].map(formatWindowAsSet)).toEqual(["2.50", "2.041", "0.00"]);
   });
 });

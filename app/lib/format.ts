@@ -50,6 +50,54 @@ export function formatEnergy(value: Maybe, unit: "kcal/mol" | "kJ/mol" = "kcal/m
   return fixed(value, unit === "kcal/mol" ? 2 : 1);
 }
 
+/** A window's decimals where two do not tell it from the next conformer; what lies closer is the same energy to anybody. */
+const MOST_WINDOW_DIGITS = 6;
+
+/**
+ * A window as it is printed and taken over: rounded up, since "within" has no slack and a number rounded down would
+ * lose the conformer that it was read off from. Two decimals, or as many more as keep the next conformer out, so that
+ * the counts and shares said of it hold for the printed number too.
+ *
+ * Rounded up by comparing doubles, not by scaling them: 1.1 x 100 is 110.00000000000001, and 1.1 stays 1.1.
+ *
+ * @param kcal kcal/mol, read off a curve
+ * @param next kcal/mol, the window that takes in one conformer more; none where left out
+ * @example windowToCarry(2.040877) // 2.05; windowToCarry(2.040877, 2.045) // 2.041
+ */
+export function windowToCarry(kcal: number, next = Number.POSITIVE_INFINITY): number {
+  for (let digits = 2; digits <= MOST_WINDOW_DIGITS; digits++) {
+    const up = roundedUp(kcal, digits);
+    if (up < next) return up;
+  }
+  return roundedUp(kcal, 2);
+}
+
+function roundedUp(value: number, digits: number): number {
+  const near = Number(value.toFixed(digits));
+  return near >= value ? near : Number((near + 10 ** -digits).toFixed(digits));
+}
+
+/**
+ * A window that must keep what is said of it, kcal/mol, without the unit: `windowToCarry` in digits.
+ *
+ * @example formatWindowToCarry(6.084513) // "6.09"
+ */
+export function formatWindowToCarry(kcal: Maybe, next?: number): string {
+  if (kcal === null || kcal === undefined || !Number.isFinite(kcal)) return ABSENT;
+  return formatWindowAsSet(windowToCarry(kcal, next));
+}
+
+/**
+ * A window that somebody set, kcal/mol, without the unit: two decimals, or as many more as it was set with.
+ *
+ * @example formatWindowAsSet(2.5) // "2.50"; formatWindowAsSet(2.041) // "2.041"
+ */
+export function formatWindowAsSet(kcal: Maybe): string {
+  let digits = 2;
+  while (digits < MOST_WINDOW_DIGITS && Number(kcal?.toFixed(digits)) !== kcal) digits++;
+  return fixed(kcal, digits);
+}
+
 /**
  * Population in per cent, from a fraction; without the sign.
  *

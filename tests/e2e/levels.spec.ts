@@ -219,7 +219,7 @@ test.describe("levels", () => {
     await expect(
       page.getByText(
         "MMFF94 puts the lowest conformer of CCSD(T), frame 1, 2nd, 0.40\u00a0kcal/mol up, and prefers frame 8, which holds 2\u00a0% at CCSD(T); " +
-          "to keep 95\u00a0% of the CCSD(T) population, carry 6.08\u00a0kcal/mol of MMFF94: 9 of 11 conformers.",
+          "to keep 95\u00a0% of the CCSD(T) population, carry 6.09\u00a0kcal/mol of MMFF94: 9 of 11 conformers.",
       ),
     ).toBeVisible();
     await expect(page.getByText("hardly agree on the order", { exact: false })).toBeVisible();

@@ -1,4 +1,11 @@
-import { formatCount, formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
+import {
+  formatCount,
+  formatEnergy,
+  formatPercent,
+  formatWindowToCarry,
+  plural,
+  withUnit,
+} from "~/lib/format";
 import { type Cumulative, withinWindow } from "~/lib/workbench/cumulative";
 import { shareFigure } from "~/lib/workbench/findings";
 import { ChartFrame } from "./chart-frame";
@@ -32,7 +39,10 @@ export function CumulativePopulation({
     >
       <Plot
         label={`Population within an energy window: ${cumulative.readings
-          .map((r) => `${formatPercent(r.asked)} within ${withUnit(formatEnergy(r.energy), "kcal/mol")}`)
+          .map(
+            (r) =>
+              `${formatPercent(r.asked)} within ${withUnit(windowDigits(cumulative, r.energy), "kcal/mol")}`,
+          )
           .join(
             ", ",
           )}${windowKcal === null ? "" : `; the window of ${formatEnergy(windowKcal)} holds ${shareFigure(within.share)}`}`}
@@ -41,7 +51,7 @@ export function CumulativePopulation({
         points={shown.map((step) => ({
           x: step.energy,
           y: 100 * step.share,
-          label: `${withUnit(formatEnergy(step.energy), "kcal/mol")}: ${plural(step.count, "conformer")}, ${formatPercent(step.share, 1)}`,
+          label: `${withUnit(windowDigits(cumulative, step.energy), "kcal/mol")}: ${plural(step.count, "conformer")}, ${formatPercent(step.share, 1)}`,
         }))}
       >
         <CumulativeLayer cumulative={cumulative} shown={shown} windowKcal={windowKcal} top={top} />
@@ -101,6 +111,11 @@ function CumulativeLayer({
   );
 }
 
+/** A window in digits that hold what is said of it. */
+function windowDigits({ steps }: Cumulative, energy: number): string {
+  return formatWindowToCarry(energy, steps.find((step) => step.energy > energy)?.energy);
+}
+
 /** The four shares as a small table below the figure: inside, curve and window cross it for one ensemble or another. */
 function Readings({ cumulative }: { cumulative: Cumulative }) {
   return (
@@ -121,7 +136,7 @@ function Readings({ cumulative }: { cumulative: Cumulative }) {
             <th scope="row" className="py-1 pr-6 text-right font-medium">
               {formatPercent(reading.asked)}
             </th>
-            <td className="py-1 pr-6 text-right">{formatEnergy(reading.energy)}</td>
+            <td className="py-1 pr-6 text-right">{windowDigits(cumulative, reading.energy)}</td>
             <td className="py-1 pr-6 text-right">{formatCount(reading.count)}</td>
           </tr>
         ))}

@@ -1,6 +1,6 @@
 import type { ReactNode } from "react";
 import { depthColour } from "~/components/ui/depth-strip";
-import { fixed, formatPercent, plural, withUnit } from "~/lib/format";
+import { fixed, formatPercent, formatWindowToCarry, plural, withUnit } from "~/lib/format";
 import type { ConformerRow } from "~/lib/workbench/conformers";
 import type { Cumulative } from "~/lib/workbench/cumulative";
 import type { Ladder } from "~/lib/workbench/ladder";
@@ -25,6 +25,7 @@ export function StillPlots({
   if (!ladder || !cumulative || rows.length === 0) return null;
   const energy = { low: -0.035 * ladder.top, high: ladder.top };
   const widest = 112 * ladder.widest;
+  const nextEnergy = (window: number) => cumulative.steps.find((step) => step.energy > window)?.energy;
   return (
     <div className="grid gap-x-10 gap-y-4 lg:grid-cols-2 print:grid-cols-2">
       <StillPlot
@@ -76,7 +77,7 @@ export function StillPlots({
         {cumulative.readings
           .map(
             ({ asked, energy: window, count }) =>
-              `${formatPercent(asked)} lies within ${fixed(window, 2)} kcal/mol (${count})`,
+              `${formatPercent(asked)} lies within ${formatWindowToCarry(window, nextEnergy(window))} kcal/mol (${plural(count, "conformer")})`,
           )
           .join("; ")}
         .{" "}

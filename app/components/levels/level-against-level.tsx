@@ -1,6 +1,7 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, type Choose, Plot, usePlot } from "~/components/charts/plot";
-import { formatEnergy, plural } from "~/lib/format";
+import { formatEnergy, formatWindowToCarry, plural } from "~/lib/format";
+import { nextWindow } from "~/lib/levels/window";
 import { ZERO_WORDS } from "./comparison-facts";
 import { PairLayer } from "./pair-layer";
 import { drawnPoints, energyTop, type PairPoint, percent, pointWords } from "./pair-points";
@@ -85,7 +86,13 @@ export function LevelAgainstLevel({
           }))}
         onChoose={onChoose}
       >
-        <LineLayer offset={offset} band={comparison.sd ?? 0} window={window.kcal} top={top} />
+        <LineLayer
+          offset={offset}
+          band={comparison.sd ?? 0}
+          window={window.kcal}
+          next={nextWindow(found.steps, window.kcal)}
+          top={top}
+        />
         <PairLayer
           points={drawn}
           x={(p) => p.level}
@@ -108,11 +115,13 @@ function LineLayer({
   offset,
   band,
   window,
+  next,
   top,
 }: {
   offset: number;
   band: number;
   window: number;
+  next: number;
   top: number;
 }) {
   const plot = usePlot();
@@ -153,7 +162,7 @@ function LineLayer({
           tone="mark"
           halo
         >
-          window {formatEnergy(window)}
+          window {formatWindowToCarry(window, next)}
         </ChartText>
       ) : null}
     </g>

@@ -5,9 +5,10 @@ import { Segments } from "~/components/ui/segments";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextButton } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
-import { ABSENT, fixed } from "~/lib/format";
+import { ABSENT, fixed, formatWindowToCarry } from "~/lib/format";
 import { compareLevels } from "~/lib/levels/compare";
 import { type Member, pairLevels } from "~/lib/levels/level-energies";
+import { nextWindow, windowCurve } from "~/lib/levels/window";
 import { LONG_NAMES } from "./compared-table";
 import type { LevelData } from "./use-comparison";
 
@@ -80,7 +81,10 @@ export function LevelMatrix({
                 {levels.map((reference, c) => {
                   const cell = cells[r]?.[c] ?? null;
                   const value = cell?.[measure] ?? null;
-                  const text = fixed(value === null ? null : factor * value, digits);
+                  const text =
+                    measure === "window"
+                      ? formatWindowToCarry(value, cell?.next)
+                      : fixed(value === null ? null : factor * value, digits);
                   return (
                     <Td key={reference.id} align="right">
                       {cell === null ? (
@@ -120,14 +124,16 @@ function cellOf(
   reference: LevelData,
   members: readonly Member[],
   temperatureK: number,
-): Record<Measure, number | null> | null {
+): (Record<Measure, number | null> & { next: number }) | null {
   const paired = pairLevels(members, level.energies, reference.energies);
   if (paired.members.length === 0) return null;
   const found = compareLevels({ ...paired, temperatureK });
+  const window = found.window[1]?.kcal ?? null;
   return {
     rmsd: found.rmsd,
     kendall: found.kendall,
     overlap: found.populationOverlap,
-    window: found.window[1]?.kcal ?? null,
+    window,
+    next: nextWindow(windowCurve(paired.level, found.referencePopulations), window ?? 0),
   };
 }

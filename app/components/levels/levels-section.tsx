@@ -14,6 +14,7 @@ import { formatCount, plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
 import type { LevelEnergiesView } from "~/lib/levels/level-energies";
 import { comparisonStory } from "~/lib/levels/story";
+import { nextWindow } from "~/lib/levels/window";
 import { AgreementTable, MOST_RESAMPLED } from "./agreement-table";
 import { ComparedTable } from "./compared-table";
 import { comparisonFacts } from "./comparison-facts";
@@ -103,7 +104,7 @@ function Compared({ levels }: { levels: readonly LevelData[] }) {
     nameOf: (place) => found.paired.members[place]?.name ?? "",
     comparison: found.comparison,
     meeting: found.meeting,
-    window: found.window,
+    window: { ...found.window, next: nextWindow(found.steps, found.window.kcal) },
   });
   return (
     <>

@@ -1,8 +1,8 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
 import { ChartText, Plot, usePlot } from "~/components/charts/plot";
 import { levelColour } from "~/components/ui/level-marker";
-import { formatCount, formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
-import type { WindowReading, WindowStep } from "~/lib/levels/window";
+import { formatCount, formatPercent, formatWindowToCarry, plural, withUnit } from "~/lib/format";
+import { nextWindow, type WindowReading, type WindowStep } from "~/lib/levels/window";
 import type { WindowBand } from "~/lib/levels/window-band";
 import { shareWords } from "~/lib/workbench/findings";
 import type { Comparison } from "./use-comparison";
@@ -49,7 +49,10 @@ export function WindowChart({ found, band }: { found: Comparison; band: WindowBa
       <Plot
         height={400}
         label={`Population of ${reference.name} within a window at ${level.name}: ${comparison.window
-          .map((r) => `${formatPercent(r.share)} within ${withUnit(formatEnergy(r.kcal), "kcal/mol")}`)
+          .map(
+            (r) =>
+              `${formatPercent(r.share)} within ${withUnit(formatWindowToCarry(r.kcal, nextWindow(steps, r.kcal)), "kcal/mol")}`,
+          )
           .join(", ")}`}
         x={{
           title: `window at ${level.name}, kcal/mol`,
@@ -67,7 +70,7 @@ export function WindowChart({ found, band }: { found: Comparison; band: WindowBa
         points={shown.map((step) => ({
           x: step.kcal,
           y: 100 * step.kept,
-          label: `${withUnit(formatEnergy(step.kcal), "kcal/mol")}: ${plural(step.count, "conformer")}, ${formatPercent(step.kept, 1)} kept`,
+          label: `${withUnit(formatWindowToCarry(step.kcal, nextWindow(steps, step.kcal)), "kcal/mol")}: ${plural(step.count, "conformer")}, ${formatPercent(step.kept, 1)} kept`,
         }))}
       >
         <CurveLayer
@@ -153,7 +156,7 @@ function DropLines({
         const y = plot.y(100 * kept);
         // The leftmost reading goes lowest: its words then have the room to the right below the others.
         const foot = plot.bottom - 44 - ((all.length - 1 - k) * (height - 130)) / Math.max(1, all.length);
-        const words = `${formatEnergy(reading.kcal)} kcal/mol, ${plural(reading.count, "conformer")}`;
+        const words = `${formatWindowToCarry(reading.kcal, nextWindow(shown, reading.kcal))} kcal/mol, ${plural(reading.count, "conformer")}`;
         const end = x + 6.2 * words.length > plot.right;
         const colour = reading.mark ? "var(--color-mark)" : "var(--color-ink-3)";
         return (

@@ -5,9 +5,17 @@ import { Skeleton } from "~/components/ui/skeleton";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { TextLink } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
-import { ABSENT, formatCount, formatEnergy, formatPercent, plural, withUnit } from "~/lib/format";
+import {
+  ABSENT,
+  formatCount,
+  formatEnergy,
+  formatPercent,
+  formatWindowToCarry,
+  plural,
+  withUnit,
+} from "~/lib/format";
 import { type ComparisonIntervals, windowInterval } from "~/lib/levels/intervals";
-import { keptWithin, narrowestWindow } from "~/lib/levels/window";
+import { keptWithin, narrowestWindow, nextWindow } from "~/lib/levels/window";
 import { bandWithin, type WindowBand } from "~/lib/levels/window-band";
 import type { Comparison } from "./use-comparison";
 
@@ -62,10 +70,10 @@ export function WindowTable({
                     ? "all"
                     : formatPercent(row.share, row.share * 100 === Math.round(row.share * 100) ? 0 : 1)}
                 </Td>
-                <Td align="right">{formatEnergy(row.kcal)}</Td>
+                <Td align="right">{carried(row.kcal)}</Td>
                 <Td align="right" className="text-ink-2 max-sm:hidden">
                   {interval ? (
-                    `${formatEnergy(interval.low)} to ${formatEnergy(interval.high)}`
+                    `${formatWindowToCarry(interval.low)} to ${formatWindowToCarry(interval.high)}`
                   ) : intervals === null && resampled && !alone && row.share < 1 ? (
                     <Skeleton className="ml-auto h-3 w-16" />
                   ) : (
@@ -104,11 +112,16 @@ export function WindowTable({
     </div>
   );
 
+  /** As printed: what the row says of a window holds for these digits. */
+  function carried(kcal: number): string {
+    return formatWindowToCarry(kcal, nextWindow(steps, kcal));
+  }
+
   function lowestWords(): string {
     const name = paired.members[meeting.referenceLowest]?.name ?? "";
     const kept = keptWithin(steps, window.kcal);
     const is = meeting.aboveAtLevel <= window.kcal ? "is within" : "lies outside";
-    return `The lowest at ${reference.name}, ${name}, ${is} ${withUnit(formatEnergy(window.kcal), "kcal/mol")} of ${level.name}, which keeps ${formatPercent(kept.kept, 1)} in ${plural(kept.count, "conformer")}.`;
+    return `The lowest at ${reference.name}, ${name}, ${is} ${withUnit(carried(window.kcal), "kcal/mol")} of ${level.name}, which keeps ${formatPercent(kept.kept, 1)} in ${plural(kept.count, "conformer")}.`;
   }
 
   function bandWords(): string {

@@ -13,9 +13,9 @@ import { TextLink } from "~/components/ui/text-link";
 import { useLevelTask } from "~/hooks/use-level-task";
 import {
   formatCount,
-  formatEnergy,
   formatPercent,
   formatTemperature,
+  formatWindowToCarry,
   plural,
   trimmed,
   withUnit,
@@ -54,7 +54,7 @@ export function WindowsPage(data: WindowsPageData) {
       {pooled ? (
         <Finding more={moreWords(data, pooled)}>
           To keep {shareWords(settings.share)} of the {found.reference} population for {reachedWords(pooled)},
-          carry {withUnit(formatEnergy(pooled.kcal), "kcal/mol")} of {found.level}.
+          carry {withUnit(formatWindowToCarry(pooled.kcal), "kcal/mol")} of {found.level}.
         </Finding>
       ) : (
         <Finding>
@@ -86,7 +86,7 @@ function moreWords({ found, settings }: WindowsPageData, pooled: PooledWindow): 
   const widest = pooled.each.reduce((most, one) => Math.max(most, one.kcal), 0);
   const all =
     pooled.reached < pooled.molecules
-      ? ` All of them need ${withUnit(formatEnergy(widest), "kcal/mol")}.`
+      ? ` All of them need ${withUnit(formatWindowToCarry(widest), "kcal/mol")}.`
       : "";
   const few =
     pooled.molecules > 1 && pooled.molecules < 10
@@ -180,7 +180,7 @@ function Molecules({ data, pooled }: { data: WindowsPageData; pooled: PooledWind
         <Button
           size="sm"
           icon={<Download aria-hidden="true" />}
-          onClick={() => saveText("windows.csv", "text/csv", csvOf(rows, data))}
+          onClick={() => saveText("windows.csv", "text/csv", csvOf(rows, data, pooled))}
         >
           CSV
         </Button>
@@ -195,10 +195,14 @@ function Molecules({ data, pooled }: { data: WindowsPageData; pooled: PooledWind
             <Th align="right" className="max-sm:hidden">
               Conformers for that
             </Th>
-            <Th align="right" unit={`within ${formatEnergy(pooled.kcal)} kcal/mol`}>
+            <Th align="right" unit={`within ${formatWindowToCarry(pooled.kcal)} kcal/mol`}>
               Kept
             </Th>
-            <Th align="right" unit={`within ${formatEnergy(pooled.kcal)} kcal/mol`} className="max-sm:hidden">
+            <Th
+              align="right"
+              unit={`within ${formatWindowToCarry(pooled.kcal)} kcal/mol`}
+              className="max-sm:hidden"
+            >
               Conformers
             </Th>
           </tr>
@@ -208,11 +212,11 @@ function Molecules({ data, pooled }: { data: WindowsPageData; pooled: PooledWind
             <Tr key={molecule.ensembleId}>
               <Td wrap>
                 <TextLink to={comparisonOf(molecule, settings)}>{molecule.name}</TextLink>
-                {each.kcal > pooled.kcal ? (
+                {each.kcal > pooled.carriedKcal ? (
                   <span className="block text-xs text-mark">not served by this window</span>
                 ) : null}
               </Td>
-              <Td align="right">{formatEnergy(each.kcal)}</Td>
+              <Td align="right">{formatWindowToCarry(each.kcal, each.next)}</Td>
               <Td align="right" className="max-sm:hidden">
                 {formatCount(each.count)} of {formatCount(each.of)}
               </Td>
@@ -226,7 +230,7 @@ function Molecules({ data, pooled }: { data: WindowsPageData; pooled: PooledWind
       </Table>
       <p className="mt-2 max-w-read text-xs text-ink-3" aria-live="polite">
         {range
-          ? `95 % interval of the window ${formatEnergy(range.low)} to ${formatEnergy(range.high)} kcal/mol: ${formatCount(interval.resamples)} resamples of the molecules and then of the conformers of each, ${interval.generator}, seed ${interval.seed}.`
+          ? `95 % interval of the window ${formatWindowToCarry(range.low)} to ${formatWindowToCarry(range.high)} kcal/mol: ${formatCount(interval.resamples)} resamples of the molecules and then of the conformers of each, ${interval.generator}, seed ${interval.seed}.`
           : rows.length > 1
             ? "The interval of the window is being drawn."
             : "One molecule gives no interval."}
@@ -269,6 +273,7 @@ function Left({ data }: { data: WindowsPageData }) {
 function csvOf(
   rows: { molecule: SeriesLevels["molecules"][number]; each: PooledWindow["each"][number] }[],
   { found, settings }: WindowsPageData,
+  pooled: PooledWindow,
 ): string {
   const { head, rows: cells } = withFacts(
     [
@@ -290,6 +295,7 @@ function csvOf(
       each.keptCount,
     ]),
     [
+      { name: "common window", unit: "kcal/mol", value: pooled.carriedKcal },
       { name: "share to keep", unit: "%", value: 100 * settings.share },
       { name: "temperature", unit: "K", value: settings.temperatureK },
       { name: "level", value: found.level ?? "" },

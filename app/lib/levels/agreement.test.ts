@@ -272,7 +272,7 @@ describe("the story in one sentence", () => {
     const story = tell(energies.mmff94!, energies.published!, ["MMFF94", "published"], (i) => roman[i]!);
     expect(plain(story.text)).toBe(
       "MMFF94 puts the lowest conformer of published, I, 2nd, 0.40 kcal/mol up, and prefers VIII, which holds 2 % at published; " +
-        "to keep 95 % of the published population, carry 6.08 kcal/mol of MMFF94: 9 of 11 conformers.",
+        "to keep 95 % of the published population, carry 6.09 kcal/mol of MMFF94: 9 of 11 conformers.",
     );
     expect(plain(story.second)).toContain("share 36 % of the population and hardly agree on the order");
   });

@@ -17,9 +17,16 @@ describe("ten molecules that need 0.5, 1.0, ... 5.0 kcal/mol", () => {
 
   it("says of each what it needs and what the common window keeps", () => {
     const { each } = pooledWindow(molecules, { share: 0.95, ofMolecules: 0.9, temperatureK: T });
-    expect(each[0]).toEqual({ kcal: 0.5, count: 2, of: 2, kept: 1, keptCount: 2 });
+    expect(each[0]).toEqual({ kcal: 0.5, next: Infinity, count: 2, of: 2, kept: 1, keptCount: 2 });
     expect(each[9]).toMatchObject({ kcal: 5, keptCount: 1 });
     expect(each[9]!.kept).toBeCloseTo(0.5, 12);
+  });
+
+  it("keeps what it says for the number as printed, rounded up", () => {
+    const odd = [0.5, 1.040877, 1.0449, 3].map((gap) => ({ level: [0, gap], reference: [3, 3] }));
+    const found = pooledWindow(odd, { share: 0.95, ofMolecules: 0.5, temperatureK: T });
+    expect(found).toMatchObject({ kcal: 1.040877, carriedKcal: 1.05, reached: 3 });
+    expect(found.each.map(({ keptCount }) => keptCount)).toEqual([2, 2, 2, 1]);
   });
 
   it("does not know the order of the molecules", () => {

@@ -1,6 +1,7 @@
+import { windowToCarry } from "../format.ts";
 import { type Bootstrap, bootstrap } from "../stats/bootstrap.ts";
 import { weigh } from "../thermo/boltzmann.ts";
-import { keptWithin, narrowestWindow, windowCurve } from "./window.ts";
+import { keptWithin, narrowestWindow, nextWindow, windowCurve } from "./window.ts";
 
 /** One molecule that has both levels. */
 export interface PooledMolecule {
@@ -16,11 +17,16 @@ export interface PooledWindow {
   ofMolecules: number;
   /** Window that does it, kcal/mol. */
   kcal: number;
+  /** The same as it is printed, rounded up: what is said of the common window holds for these digits. */
+  carriedKcal: number;
   /** Molecules for which that window keeps the share, of all. */
   reached: number;
   molecules: number;
-  /** One a molecule, in the order given: the window it needs by itself, and what the common one keeps. */
-  each: { kcal: number; count: number; of: number; kept: number; keptCount: number }[];
+  /**
+   * One a molecule, in the order given: the window it needs by itself, the one that would take in a conformer more, and
+   * what the common one keeps.
+   */
+  each: { kcal: number; next: number; count: number; of: number; kept: number; keptCount: number }[];
 }
 
 /**
@@ -44,10 +50,12 @@ export function pooledWindow(
     needed.map((one) => one.kcal),
     ofMolecules,
   );
+  const carriedKcal = windowToCarry(kcal);
   const each = curves.map((curve, m) => {
-    const within = keptWithin(curve, kcal);
+    const within = keptWithin(curve, carriedKcal);
     return {
       kcal: needed[m]!.kcal,
+      next: nextWindow(curve, needed[m]!.kcal),
       count: needed[m]!.count,
       of: molecules[m]!.level.length,
       kept: within.kept,
@@ -58,7 +66,8 @@ export function pooledWindow(
     share,
     ofMolecules,
     kcal,
-    reached: each.filter((one) => one.kcal <= kcal).length,
+    carriedKcal,
+    reached: each.filter((one) => one.kcal <= carriedKcal).length,
     molecules: molecules.length,
     each,
   };

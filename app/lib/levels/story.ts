@@ -1,4 +1,4 @@
-import { formatCount, formatEnergy, plural, withUnit } from "../format.ts";
+import { formatCount, formatEnergy, formatWindowToCarry, plural, withUnit } from "../format.ts";
 import { joinWords, shareWords } from "../workbench/findings.ts";
 import type { LevelComparison } from "./compare.ts";
 import type { LowestMeeting } from "./ranking.ts";
@@ -15,7 +15,7 @@ export interface Story {
  * The comparison of two levels told in one sentence, for somebody who has read nothing else.
  *
  * @param names of the levels, and of each conformer by place
- * @param share that the window is to keep, fraction, and the window that does
+ * @param window that keeps the share (fraction), and the one that takes in a conformer more: it is printed rounded up
  * @example "MMFF94 puts the lowest conformer of B3LYP, c4, 3rd, 0.80 kcal/mol up; ..."
  */
 export function comparisonStory(input: {
@@ -24,7 +24,7 @@ export function comparisonStory(input: {
   nameOf: (place: number) => string;
   comparison: LevelComparison;
   meeting: LowestMeeting;
-  window: { share: number; kcal: number; count: number };
+  window: { share: number; kcal: number; count: number; next?: number };
 }): Story {
   const { level, reference, comparison, meeting, window } = input;
   const { n } = comparison;
@@ -36,10 +36,11 @@ export function comparisonStory(input: {
   }
   const first = constantWords(input) ?? (meeting.same ? sameLowest(input) : otherLowest(input));
   const keep = `to keep ${shareWords(window.share)} of the ${reference} population`;
+  const carried = withUnit(formatWindowToCarry(window.kcal, window.next), "kcal/mol");
   const carry =
     window.count === n
-      ? `${keep} takes all ${formatCount(n)} conformers, ${kcal(window.kcal)} of ${level}`
-      : `${keep}, carry ${kcal(window.kcal)} of ${level}: ${formatCount(window.count)} of ${formatCount(n)} conformers`;
+      ? `${keep} takes all ${formatCount(n)} conformers, ${carried} of ${level}`
+      : `${keep}, carry ${carried} of ${level}: ${formatCount(window.count)} of ${formatCount(n)} conformers`;
   return { text: `${first}; ${carry}.`, second: agreementWords(comparison) };
 }
 

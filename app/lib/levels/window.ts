@@ -58,6 +58,11 @@ export function narrowestWindow(steps: readonly WindowStep[], share: number): Wi
   return { share, kcal: step.kcal, count: step.count };
 }
 
+/** The window that takes in one step more, kcal/mol: a printed window stays below it. Infinity at the last step. */
+export function nextWindow(steps: readonly { kcal: number }[], windowKcal: number): number {
+  return steps.find((step) => step.kcal > windowKcal)?.kcal ?? Number.POSITIVE_INFINITY;
+}
+
 /** What a window keeps: the last step within it. */
 export function keptWithin(steps: readonly WindowStep[], windowKcal: number): WindowStep {
   let best: WindowStep = { kcal: 0, count: 0, kept: 0 };
