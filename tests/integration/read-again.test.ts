@@ -94,6 +94,25 @@ describe("reading again from the page of intake", () => {
     expect(await levels()).toMatchObject([{ name: "Second", unit: "hartree" }]);
   });
 
+  it("has a field for what was asked of the files, filled with the answer; left empty it is asked again", async () => {
+    const water = ["O 0.0000 0.0000 0.1173", "H 0.0000 0.7572 -0.4692", "H 0.0000 -0.7572 -0.4692"];
+    const content = frame("a", BUTANE) + frame("b", water);
+    const taken = await takenIn(lab.token, [{ name: "both.xyz", content }]);
+    const answers = [{ id: "group", option: "frame:2" }];
+    expect((await post(lab.token, `/ensembles/${taken.id}/answers`, { answers })).status).toBe(200);
+    const path = `/ensembles/${taken.id}/intake`;
+    const page = await (await call(path, { cookie: analyst.cookie })).text();
+    expect(page).toMatch(/name="answer:group">.*<option value="frame:2" selected=""/);
+    const again = (option: string) =>
+      call(path, { cookie: analyst.cookie, form: { intent: "reread", "answer:group": option } });
+    const intake = () => loadIntake({ actor: personOf(analyst.id), ensembleId: taken.id });
+    expect((await again("frame:1")).status).toBe(200);
+    expect((await intake()).questions).toMatchObject([{ id: "group", answered: "frame:1" }]);
+    expect((await again("")).status).toBe(200);
+    expect((await intake()).questions[0]?.answered).toBeUndefined();
+    expect((await again("frame:9")).status).toBe(422);
+  });
+
   it("is not for readers", async () => {
     expect((await send(reader.cookie, { level: "Third", energyUnit: "eV" })).status).toBe(403);
     expect(await levels()).toMatchObject([{ name: "Second", unit: "hartree" }]);
