@@ -2,6 +2,7 @@ import { RuleName } from "~/components/averages/rule-name";
 import { Badge } from "~/components/ui/badge";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import type { EditionView } from "~/lib/edition/views";
+import { whyNoAverage } from "~/lib/edition/why-no-average";
 import { fixed, formatCount, formatEnergy, formatPercent, formatTemperature, withUnit } from "~/lib/format";
 import { EditionHead } from "./edition-head";
 
@@ -56,6 +57,9 @@ export function AveragesTable({ edition }: { edition: EditionView }) {
                   {row.property}
                   {edition.counting.includes(row.property) ? (
                     <span className="block text-xs text-ink-3">counts the frames up: may be a label</span>
+                  ) : null}
+                  {row.average === null ? (
+                    <span className="block text-xs text-ink-2">{whyNoAverage(row)}</span>
                   ) : null}
                   <span className="block text-xs text-ink-3 sm:hidden">
                     <RuleName rule={row.rule} />

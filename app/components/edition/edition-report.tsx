@@ -129,7 +129,9 @@ function Strip({ edition }: { edition: EditionView }) {
 function HowSure({ edition }: { edition: EditionView }) {
   const first = edition.findings.filter(({ kind }) => kind === "open");
   const open = [...edition.open, ...first];
-  const know = edition.findings.filter(({ kind }) => kind === "know");
+  // Editions frozen earlier hold a sentence in both lists.
+  const said = new Set(open.map(({ title }) => title));
+  const know = edition.findings.filter(({ kind, title }) => kind === "know" && !said.has(title));
   return (
     <section aria-labelledby="edition-sure" className="min-w-0">
       <EditionHead id="edition-sure">How sure</EditionHead>

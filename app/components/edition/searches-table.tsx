@@ -40,7 +40,8 @@ export function SearchesTable({ edition }: { edition: EditionView }) {
         <p className="figures mt-2 text-xs text-ink-3">
           The first found {formatCount(pair.first)}, the later ones {formatCount(pair.second)}, and{" "}
           {formatCount(pair.both)} were found by both: about {fixed(pair.estimate, 1)} exist by capture and
-          recapture, a lower bound where both favour the same shapes.
+          recapture. That goes by what both met and is too low where both favour the same shapes; an estimate
+          from how often each shape was found can differ, and the larger one counts.
         </p>
       )}
     </div>

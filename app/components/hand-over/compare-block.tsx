@@ -1,6 +1,7 @@
 import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import {
+  againstUncertainty,
   type ComparedAverage,
   type ComparedConformer,
   changeSentence,
@@ -119,12 +120,17 @@ function AverageTable({
               <Td wrap>
                 {row.property}
                 {row.unit ? <span className="text-ink-3"> {row.unit}</span> : null}
+                {row.beyond === null ? (
+                  <span className="block text-xs text-ink-2 sm:hidden">
+                    {againstUncertainty(row, before, after)}
+                  </span>
+                ) : null}
               </Td>
               <Td align="right">{shown(row.before, row.sdBefore)}</Td>
               <Td align="right">{shown(row.after, row.sdAfter)}</Td>
               <Td align="right">{change === null ? "–" : signed(change, digits)}</Td>
               <Td wrap className="text-ink-2 max-sm:hidden">
-                {row.beyond === null ? "not known" : row.beyond ? "larger" : "within it"}
+                {againstUncertainty(row, before, after)}
               </Td>
             </Tr>
           );

@@ -73,6 +73,11 @@ export function HandOverSection({
       {last ? <VerifyStrip edition={last} mayShare={view.mayShare} /> : null}
       {ensemble.role === "guest" ? null : <EditionsBlock ensembleId={ensemble.id} view={view} />}
       {view.comparison ? <CompareBlock comparison={view.comparison} /> : null}
+      {view.comparisonFault === null ? null : (
+        <Note tone="danger" className="mt-4">
+          <p role="alert">{view.comparisonFault}</p>
+        </Note>
+      )}
       {ensemble.role === "guest" ? null : <LinksBlock view={view} />}
       {last ? (
         <div className="mt-8 grid gap-x-8 xl:grid-cols-2">

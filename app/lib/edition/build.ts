@@ -151,7 +151,10 @@ export function buildContent(source: EditionSource, drawn: DrawnUncertainty | nu
   const words = { summary: editionSummary(facts, rows), methods: methodsOf(facts, source.version) };
   if (!first) {
     const open = openItems(facts, result, source.recipe, source.moment);
-    return { ...facts, open, words, findings: found.filter(({ kind }) => kind === "know") };
+    // What is open is said once, there.
+    const said = new Set(open.map(({ title }) => title));
+    const know = found.filter(({ kind, title }) => kind === "know" && !said.has(title));
+    return { ...facts, open, words, findings: know };
   }
   return { ...facts, open: [], words, findings: found };
 }

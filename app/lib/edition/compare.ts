@@ -14,6 +14,7 @@ import { joinWords } from "../workbench/findings.ts";
 import { ATOM_SET_WORDS } from "../workbench/recipe-words.ts";
 import type { EditionContent } from "./content.ts";
 import { atomNames } from "./measured.ts";
+import { whyNoAverage } from "./why-no-average.ts";
 
 /** One setting or count that differs, as both editions have it. */
 export interface EditionChange {
@@ -57,6 +58,9 @@ export interface ComparedAverage {
   after: number | null;
   sdBefore: number | null;
   sdAfter: number | null;
+  /** Why the edition gives no average; null where it gives one. */
+  noneBefore: string | null;
+  noneAfter: string | null;
   /** True where the change is larger than both uncertainties together; null where one of them is not known. */
   beyond: boolean | null;
 }
@@ -82,6 +86,7 @@ export type Comparable = Pick<
   | "measured"
 > & { columns: readonly { name: string; sha256: string }[] };
 
+const NOT_THERE = "it has no such average";
 /** Populations nearer than this print alike. */
 const SAME_POPULATION = 5e-4;
 const UNCHANGED = "populations unchanged";
@@ -138,9 +143,31 @@ function compareAverages(a: Comparable, b: Comparable): ComparedAverage[] {
       after: to,
       sdBefore,
       sdAfter,
+      noneBefore: old === undefined ? NOT_THERE : whyNoAverage(old),
+      noneAfter: now === undefined ? NOT_THERE : whyNoAverage(now),
       beyond: known ? Math.abs(to - from) > sdBefore + sdAfter : null,
     };
   });
+}
+
+/**
+ * How the change of an average stands against its uncertainty, or why that cannot be said.
+ *
+ * @example againstUncertainty(row, 1, 2) // "edition 2: covers 43 % of the population: no average below 90 %"
+ */
+export function againstUncertainty(row: ComparedAverage, before: number, after: number): string {
+  if (row.beyond !== null) return row.beyond ? "larger" : "within it";
+  const { noneBefore, noneAfter } = row;
+  if (noneBefore !== null && noneBefore === noneAfter) return `in both: ${noneBefore}`;
+  const none = [
+    noneBefore === null ? null : `edition ${before}: ${noneBefore}`,
+    noneAfter === null ? null : `edition ${after}: ${noneAfter}`,
+  ].filter((words) => words !== null);
+  if (none.length > 0) return none.join("; ");
+  const bare = [row.sdBefore === null ? before : null, row.sdAfter === null ? after : null].filter(
+    (number) => number !== null,
+  );
+  return `edition ${bare.join(" and ")}: no uncertainty, since no error of the level was given`;
 }
 
 /** Two averages that print alike at six figures are the same. */

@@ -72,6 +72,8 @@ export interface HandOverView {
   /** Methods text of the distinct set shown, then a line an assumption; null where there is no set. */
   methods: string[] | null;
   comparison: { before: number; after: number; result: EditionComparison } | null;
+  /** Why the two editions that the address names are not compared; null where they are, or where it names none. */
+  comparisonFault: string | null;
   /** Longest life of a link, days. */
   linkDays: number;
   mayShare: boolean;

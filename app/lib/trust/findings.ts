@@ -315,7 +315,13 @@ export function samplingFindings({
   const { richness, distinct, once } = coverage;
   const missing = richness.estimate - distinct;
   const estimate = Math.round(richness.estimate);
-  const between = searches ? ` Two searches against each other estimate ${fixed(searches.estimate, 1)}.` : "";
+  const estimated = searches ? fixed(searches.estimate, 1) : null;
+  const between = estimated === null ? "" : ` Two searches against each other estimate ${estimated}.`;
+  // Two estimates stand beside each other: say from what each comes, and which to go by.
+  const beside =
+    estimated === null
+      ? ""
+      : ` From what two searches have in common the estimate is ${estimated}; both tend to be too low, so the larger one counts.`;
   if (once === 0 || missing < 0.5) {
     return [
       {
@@ -330,7 +336,7 @@ export function samplingFindings({
     {
       kind: coverage.coverage < 0.9 ? "settle" : "know",
       title: `${capital(missing < 12.5 ? `${countWord(Math.max(1, Math.round(missing)))} or so ${Math.round(missing) <= 1 ? "shape is" : "shapes are"}` : `${formatCount(Math.round(missing))} or so shapes are`)} probably missing.`,
-      reason: `Coverage of the search is ${formatPercent(coverage.coverage, 1)}; at least ${formatCount(estimate)} shapes exist, ${formatCount(distinct)} were found, ${countWord(once)} of them once.${between} What is missing is rare in the search, not necessarily in the flask.`,
+      reason: `Coverage of the search is ${formatPercent(coverage.coverage, 1)}; from how often each shape was found at least ${formatCount(estimate)} exist; ${formatCount(distinct)} were found, ${countWord(once)} of them once.${beside} What is missing is rare in the search, not necessarily in the flask.`,
       act: {
         type: "section",
         path: "intake",

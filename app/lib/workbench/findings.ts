@@ -33,16 +33,50 @@ export interface Finding {
 /** From this share on a shape counts as one that carries the ensemble. */
 const CARRIES = 0.05;
 
+/** Shares that pages list beside the finding: a rounded figure must not claim one that is not reached. */
+const LISTED = [0.5, 0.9, 0.95, 0.99];
+
+/** Rounded to so many decimals a share would claim a listed one that it does not reach. */
+const claims = (fraction: number, digits: number) =>
+  LISTED.some(
+    (share) => fraction < share - 1e-12 && Number(fixed(100 * fraction, digits)) >= 100 * share - 1e-9,
+  );
+
+/** Whole per cent would claim a listed share, or disagree with the one decimal of the table beside it. */
+function needsDecimal(fraction: number): boolean {
+  const whole = Number(fixed(100 * fraction, 0));
+  return claims(fraction, 0) || Math.round(Number(fixed(100 * fraction, 1))) !== whole;
+}
+
+/** One decimal, rounded down where rounding would claim a listed share. */
+const withDecimal = (fraction: number) =>
+  formatPercent(claims(fraction, 1) ? Math.floor(1000 * fraction) / 1000 : fraction, 1);
+
 /**
- * A population in the finding: whole per cent, one decimal only below 1 %, and never "100 %" of what is not all.
+ * A population in the finding: whole per cent, one decimal below 1 % and where whole per cent would claim a half, 90, 95
+ * or 99 % that is not reached or disagree with a table, and never "100 %" of what is not all.
  *
  * @example shareWords(0.69295) // "69 %"; shareWords(0.0051) // "0.5 %"; shareWords(0.997) // "more than 99 %"
+ * @example shareWords(0.949) // "94.9 %"; shareWords(0.5346) // "53.5 %"
  */
 export function shareWords(fraction: number): string {
   if (fraction >= 1 - 1e-12) return formatPercent(1);
   if (fraction >= 0.995) return `more than ${formatPercent(0.99)}`;
-  if (fraction >= 0.0095) return formatPercent(fraction);
+  if (fraction >= 0.0095) return needsDecimal(fraction) ? withDecimal(fraction) : formatPercent(fraction);
   return fraction > 0 ? shareFigure(fraction) : formatPercent(0);
+}
+
+/**
+ * Shares of one sentence, all with as many decimals: with one where one of them needs it.
+ *
+ * @example sharesWords([0.949, 0.53]) // ["94.9 %", "53.0 %"]
+ */
+export function sharesWords(fractions: readonly number[]): string[] {
+  const plain = (fraction: number) => fraction < 0.0095 || fraction >= 0.995;
+  const decimal = fractions.some((fraction) => !plain(fraction) && needsDecimal(fraction));
+  return fractions.map((fraction) =>
+    decimal && !plain(fraction) ? withDecimal(fraction) : shareWords(fraction),
+  );
 }
 
 /**
@@ -76,7 +110,8 @@ export function populationsFinding(rows: readonly ConformerRow[], temperatureK: 
   const sum = (some: readonly ConformerRow[]) =>
     some.reduce((total, row) => total + (row.population ?? 0), 0);
   if (carrying.length === ranked.length && ranked.length <= 4) {
-    const each = ranked.map((row) => `${row.name} ${shareWords(row.population ?? 0)}`);
+    const shares = sharesWords(ranked.map((row) => row.population ?? 0));
+    const each = ranked.map((row, k) => `${row.name} ${shares[k]}`);
     return {
       text: `${capital(countWord(ranked.length))} shapes share the whole ensemble ${at}: ${joinWords(each)}.`,
       second: null,
@@ -98,10 +133,11 @@ export function populationsFinding(rows: readonly ConformerRow[], temperatureK: 
       second: next ? `Next comes ${next.name} with ${shareWords(next.population ?? 0)}.` : null,
     };
   }
+  const [together, alone] = sharesWords([sum(carrying), first.population]);
   return {
     text:
-      `${capital(countWord(carrying.length))} shapes carry ${shareWords(sum(carrying))} of the ensemble ${at}, ` +
-      `${first.name} alone ${shareWords(first.population)}.`,
+      `${capital(countWord(carrying.length))} shapes carry ${together} of the ensemble ${at}, ` +
+      `${first.name} alone ${alone}.`,
     second: null,
   };
 }

@@ -23,10 +23,11 @@ export function meta({ matches }: Route.MetaArgs) {
   return sectionMeta("Hand-over", matches);
 }
 
-/** Numbers of two editions to compare, where the address names two. */
+/** Numbers of two editions to compare, 0 for what is none; null where the address asks for no comparison. */
 function comparedIn(params: URLSearchParams): [number, number] | null {
-  const pair = [editionNumber(params.get("from") ?? ""), editionNumber(params.get("to") ?? "")] as const;
-  return pair[0] > 0 && pair[1] > 0 ? [pair[0], pair[1]] : null;
+  if (!params.has("from") && !params.has("to")) return null;
+  const numberIn = (name: string) => Math.max(0, editionNumber(params.get(name) ?? ""));
+  return [numberIn("from"), numberIn("to")];
 }
 
 export async function loader({ params, context, url }: Route.LoaderArgs) {

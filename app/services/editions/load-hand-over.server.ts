@@ -3,6 +3,7 @@ import { z } from "zod";
 import { db } from "../../db/client.server.ts";
 import { editions, teams, users } from "../../db/schema.server.ts";
 import { changesSince, compareEditions, firstWords } from "../../lib/edition/compare.ts";
+import { pairFault } from "../../lib/edition/compared-pair.ts";
 import { editionFileSchema, editionRecipeSchema } from "../../lib/edition/content.ts";
 import type { EditionRow, HandOverView, LinkRow } from "../../lib/edition/views.ts";
 import { type Actor, accessEnsemble, roleMay } from "../auth/access.server.ts";
@@ -90,7 +91,7 @@ async function nextOf(
   return { number: last.number + 1, changed: changesSince(before.content, content), open, sigma };
 }
 
-/** Two editions by their numbers, the earlier first; null where one of them is not there. */
+/** Two editions by their numbers, the earlier first; null where `pairFault` has something to say. */
 async function comparisonOf(at: At, rows: readonly Row[], asked: readonly [number, number] | null) {
   if (asked === null) return null;
   const [before, after] = [Math.min(...asked), Math.max(...asked)];
@@ -109,7 +110,7 @@ async function linkDaysOf(teamId: string): Promise<number> {
 /**
  * Editions, links, and what the next edition would bring. Guests of the example see none of it.
  *
- * @param options.compare numbers of two editions
+ * @param options.compare numbers of two editions, 0 for what is no number of one; null where none are asked for
  */
 export async function loadHandOver(
   options: Shown & { actor: Actor; ensembleId: string; compare: readonly [number, number] | null },
@@ -118,7 +119,15 @@ export async function loadHandOver(
   const now = new Date();
   const draft = await draftOf(grant, options);
   const methods = draft === null ? null : draft.content.words.methods.split("\n");
-  const nothing = { editions: [], links: [], next: null, comparison: null, linkDays: 0, mayShare: false };
+  const nothing = {
+    editions: [],
+    links: [],
+    next: null,
+    comparison: null,
+    comparisonFault: null,
+    linkDays: 0,
+    mayShare: false,
+  };
   if (grant.role === "guest") return { ...nothing, methods, now: now.toISOString() };
   const mayShare = roleMay(grant.role, "share");
   const links = await findLinks(grant.teamId, grant.ensembleId, now);
@@ -134,6 +143,12 @@ export async function loadHandOver(
     next,
     methods,
     comparison,
+    comparisonFault:
+      options.compare &&
+      pairFault(
+        options.compare,
+        rows.map(({ number }) => number),
+      ),
     linkDays,
     mayShare,
     now: now.toISOString(),
