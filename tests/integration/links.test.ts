@@ -10,7 +10,7 @@ import { findLinks } from "~/services/links/list-links.server";
 import { exportLogbook, loadLogbook } from "~/services/logbook/load-logbook.server";
 import { CONTACT, freeze, link, makeSifted, personOf } from "../factories/editions";
 import { makeMember } from "../factories/people";
-import { makeLab, sifted, withJobs } from "../factories/upload";
+import { formOf, makeLab, reference, sifted, takenIn, withJobs } from "../factories/upload";
 import { call, routeRows } from "../setup/app";
 
 let runner: Awaited<ReturnType<typeof withJobs>>;
@@ -139,6 +139,27 @@ describe("a live link", () => {
       expect(page).not.toContain(other.contentSha256.slice(0, 8));
       expect(page).not.toContain("For the partner");
     }
+  });
+
+  it("tells a guest that a second file was read in, and says what is open once", async () => {
+    const lines = reference("ensembles/ac-ala-nhme.xyz").toString("utf8").trimEnd().split("\n");
+    const size = Number(lines[0]) + 2;
+    const part = (from: number, to: number) => `${lines.slice(from * size, to * size).join("\n")}\n`;
+    const fields = { level: "MMFF94", energyUnit: "kcal/mol" };
+    const { id } = await takenIn(lab.token, [{ name: "calm.xyz", content: part(0, 12) }], fields);
+    const body = formOf([{ name: "rough.xyz", content: part(12, 20) }], fields);
+    await call(`/api/v1/ensembles/${id}/files`, { method: "POST", token: lab.token, body });
+    const sift = await sifted(lab.token, id, { level: "MMFF94" });
+    const made = await freeze(actor(), { ensembleId: id, siftId: sift.id });
+    const { secret } = await link(actor(), { ensembleId: id, number: made.number }, { logbook: true });
+    const page = await (await call(`/e/${secret}`)).text();
+    const part2 = page.slice(page.indexOf("How it came about"));
+    expect(part2).toMatch(/Added batch 2: 8 frames: 8 accepted/);
+    expect(part2).toContain("rough.xyz");
+    const content = await (await call(`/e/${secret}/files/results.json`)).json();
+    const titles = [...content.open, ...content.findings].map(({ title }: { title: string }) => title);
+    expect(content.open.length).toBeGreaterThan(0);
+    expect(new Set(titles).size).toBe(titles.length);
   });
 
   it("holds no addresses, user names or ids (C07)", async () => {
