@@ -5,7 +5,7 @@ import { Provenance, type Source } from "~/components/ui/provenance";
 import { Skeleton } from "~/components/ui/skeleton";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { ABSENT, fixed, formatCount, formatTemperature, plural, withUnit } from "~/lib/format";
-import type { ComparisonIntervals, IntervalName } from "~/lib/levels/intervals";
+import { type ComparisonIntervals, FEWEST_RESAMPLED, type IntervalName } from "~/lib/levels/intervals";
 import { pairDeviations, topAgreement } from "~/lib/levels/ranking";
 import type { ZeroChoice } from "~/lib/url-state";
 import type { Comparison } from "./use-comparison";
@@ -58,7 +58,7 @@ export function AgreementTable({
     { label: "temperature", value: withUnit(formatTemperature(temperatureK), "K") },
   ];
   return (
-    <div className="min-w-0">
+    <div className="min-w-0 break-inside-avoid">
       <BlockHead title={`Agreement, ${plural(n, "conformer")}`} />
       <Table aria-label="Agreement of the two levels">
         <thead>
@@ -91,8 +91,8 @@ export function AgreementTable({
       <p className="mt-2 max-w-read text-xs text-ink-3">
         {intervals
           ? `Intervals: ${formatCount(intervals.resamples)} resamples of the conformers, 2.5 to 97.5 %, ${intervals.generator}, seed ${intervals.seed}; each resample finds its own zero. Conformers of one molecule are not independent: they say nothing of other molecules.`
-          : n < 2
-            ? "One conformer has no interval."
+          : n < FEWEST_RESAMPLED
+            ? "No intervals below four conformers."
             : resampled
               ? "The intervals are being drawn."
               : `No intervals: they are not drawn for more than ${plural(MOST_RESAMPLED, "conformer")}, and here are ${formatCount(n)}.`}
@@ -140,7 +140,7 @@ function IntervalCell({
   resampled: boolean;
   n: number;
 }) {
-  if (!row.interval || n < 2 || row.value === null) return ABSENT;
+  if (!row.interval || n < FEWEST_RESAMPLED || row.value === null) return ABSENT;
   if (intervals === null && !resampled) return ABSENT;
   if (intervals === null) return <Skeleton className="ml-auto h-3 w-16" />;
   const interval = intervals.intervals[row.interval];

@@ -83,7 +83,10 @@ export function ComparedTable({
           CSV
         </Button>
       </BlockHead>
-      <Table aria-labelledby="compared">
+      <Table
+        aria-labelledby="compared"
+        className="print:text-xs print:[&_td]:px-1 print:[&_th]:min-w-0 print:[&_th]:px-1"
+      >
         <thead>
           <tr>
             <Th>Conformer</Th>
@@ -108,7 +111,7 @@ export function ComparedTable({
                   <BreakableName name={level.name} />, %
                 </>
               }
-              className={`max-xl:hidden ${LONG_NAMES}`}
+              className={`max-xl:hidden print:table-cell ${LONG_NAMES}`}
             >
               Population
             </Th>
@@ -118,7 +121,7 @@ export function ComparedTable({
                   <BreakableName name={reference.name} />, %
                 </>
               }
-              className={`max-xl:hidden ${LONG_NAMES}`}
+              className={`max-xl:hidden print:table-cell ${LONG_NAMES}`}
             >
               Population
             </Th>
@@ -156,10 +159,10 @@ export function ComparedTable({
               </Td>
               <Td className="text-ink-3 max-sm:hidden">{movesWords(atLevel - atReference)}</Td>
               {[point.levelPopulation, point.referencePopulation].map((population, k) => (
-                <Td key={k} className="max-xl:hidden">
+                <Td key={k} className="max-xl:hidden print:table-cell">
                   <span className="flex items-center gap-3">
                     <span className="w-9 shrink-0 text-right">{formatPopulation(population)}</span>
-                    <span className="w-16">
+                    <span className="w-16 print:hidden">
                       <PopulationBar population={population} widest={widest} />
                     </span>
                   </span>

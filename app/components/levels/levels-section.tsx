@@ -12,6 +12,7 @@ import { useWorkbench } from "~/components/workbench/workbench-context";
 import { useLevelTask } from "~/hooks/use-level-task";
 import { formatCount, plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
+import { FEWEST_RESAMPLED } from "~/lib/levels/intervals";
 import type { LevelEnergiesView } from "~/lib/levels/level-energies";
 import { comparisonStory } from "~/lib/levels/story";
 import { nextWindow } from "~/lib/levels/window";
@@ -104,6 +105,7 @@ function Compared({ levels }: { levels: readonly LevelData[] }) {
     nameOf: (place) => found.paired.members[place]?.name ?? "",
     comparison: found.comparison,
     meeting: found.meeting,
+    covered: found.covered,
     window: { ...found.window, next: nextWindow(found.steps, found.window.kcal) },
   });
   return (
@@ -155,7 +157,7 @@ function Figures({ found: live }: { found: Comparison }) {
     "intervals",
     useMemo(
       () =>
-        comparison.n >= 2 && resampled
+        comparison.n >= FEWEST_RESAMPLED && resampled
           ? {
               comparison: {
                 ...base,
@@ -187,7 +189,7 @@ function Figures({ found: live }: { found: Comparison }) {
         <ErrorAgainstEnergy {...shared} />
         <SlopeChart {...shared} />
       </div>
-      <p className="mt-6 text-xs text-ink-3">
+      <p className="mt-6 text-xs text-ink-3 print:hidden">
         <TextLink to={`${href("/methods")}#levels`}>How this is computed</TextLink>
       </p>
     </>

@@ -4,6 +4,8 @@ import { useWorkbench } from "~/components/workbench/workbench-context";
 import type { ColumnData } from "~/lib/column-data";
 import { compareLevels, type LevelComparison } from "~/lib/levels/compare";
 import {
+  type CoveredReference,
+  coveredReference,
   type LevelEnergiesView,
   type Member,
   type PairedLevels,
@@ -84,6 +86,8 @@ export interface Comparison {
   steps: WindowStep[];
   /** For the share to keep that is set. */
   window: WindowReading;
+  /** What of the reference has an energy at the level. */
+  covered: CoveredReference;
   /** Frame of a zero at one conformer; null otherwise. */
   zeroPlace: number | null;
 }
@@ -121,7 +125,8 @@ export function useComparison(
       meeting,
       steps,
       window: narrowestWindow(steps, share),
+      covered: coveredReference(members, level.energies, reference.energies, temperatureK),
       zeroPlace: zero === "common" ? (named >= 0 ? named : meeting.referenceLowest) : null,
     };
-  }, [level, reference, paired, temperatureK, zero, zeroFrame, share]);
+  }, [level, reference, members, paired, temperatureK, zero, zeroFrame, share]);
 }

@@ -14,7 +14,7 @@ import {
   plural,
   withUnit,
 } from "~/lib/format";
-import { type ComparisonIntervals, windowInterval } from "~/lib/levels/intervals";
+import { type ComparisonIntervals, FEWEST_RESAMPLED, windowInterval } from "~/lib/levels/intervals";
 import { keptWithin, narrowestWindow, nextWindow } from "~/lib/levels/window";
 import { bandWithin, type WindowBand } from "~/lib/levels/window-band";
 import type { Comparison } from "./use-comparison";
@@ -39,9 +39,9 @@ export function WindowTable({
     (a, b) => a - b,
   );
   const rows = shares.map((share) => ({ ...narrowestWindow(steps, share), share }));
-  const alone = comparison.n < 2;
+  const few = comparison.n < FEWEST_RESAMPLED;
   return (
-    <div className="min-w-0">
+    <div className="min-w-0 break-inside-avoid">
       <BlockHead title="How wide to carry" />
       <Table aria-label="Window and conformers for a share of the reference population">
         <thead>
@@ -74,7 +74,7 @@ export function WindowTable({
                 <Td align="right" className="text-ink-2 max-sm:hidden">
                   {interval ? (
                     `${formatWindowToCarry(interval.low)} to ${formatWindowToCarry(interval.high)}`
-                  ) : intervals === null && resampled && !alone && row.share < 1 ? (
+                  ) : intervals === null && resampled && !few && row.share < 1 ? (
                     <Skeleton className="ml-auto h-3 w-16" />
                   ) : (
                     ABSENT
@@ -91,13 +91,17 @@ export function WindowTable({
       </Table>
       <p className="mt-2 max-w-read text-xs text-ink-3">
         {lowestWords()} {bandWords()}{" "}
-        <TextLink to={{ pathname: href("/ensembles/:id/plan", { id: ensemble.id }), search }}>
+        <TextLink
+          className="print:hidden"
+          to={{ pathname: href("/ensembles/:id/plan", { id: ensemble.id }), search }}
+        >
           Make a plan
         </TextLink>
         {ensemble.role === "guest" ? null : (
           <>
             {" "}
             <TextLink
+              className="print:hidden"
               to={`${href("/teams/:team/windows", { team: ensemble.team.id })}?${new URLSearchParams({ series: ensemble.series.id, level: level.name, ref: reference.name })}`}
             >
               The window for the whole series
@@ -121,7 +125,8 @@ export function WindowTable({
     const name = paired.members[meeting.referenceLowest]?.name ?? "";
     const kept = keptWithin(steps, window.kcal);
     const is = meeting.aboveAtLevel <= window.kcal ? "is within" : "lies outside";
-    return `The lowest at ${reference.name}, ${name}, ${is} ${withUnit(carried(window.kcal), "kcal/mol")} of ${level.name}, which keeps ${formatPercent(kept.kept, 1)} in ${plural(kept.count, "conformer")}.`;
+    const lowest = found.covered.lowest ? "The lowest of those compared" : "The lowest";
+    return `${lowest} at ${reference.name}, ${name}, ${is} ${withUnit(carried(window.kcal), "kcal/mol")} of ${level.name}, which keeps ${formatPercent(kept.kept, 1)} in ${plural(kept.count, "conformer")}.`;
   }
 
   function bandWords(): string {

@@ -92,7 +92,15 @@ function moreWords({ found, settings }: WindowsPageData, pooled: PooledWindow): 
     pooled.molecules > 1 && pooled.molecules < 10
       ? ` With ${plural(pooled.molecules, "molecule")}, ${formatPercent(settings.ofMolecules)} of them means ${formatCount(pooled.reached)}.`
       : "";
-  return `At ${withUnit(formatTemperature(settings.temperatureK), "K")}, over the distinct sets with energies at ${found.level} and ${found.reference}.${all}${few}`;
+  return `${weightsWords(found.molecules)} At ${withUnit(formatTemperature(settings.temperatureK), "K")}, over the distinct sets with energies at ${found.level} and ${found.reference}.${all}${few}`;
+}
+
+/** By which weights the populations are taken. */
+function weightsWords(molecules: SeriesLevels["molecules"]): string {
+  const kinds = [...new Set(molecules.map(({ weighedBy }) => weighedBy))];
+  return kinds.length > 1
+    ? "Populations count each conformer by its copies, and by its degeneracy where the reference gives free energies."
+    : `Populations count each conformer by its ${kinds[0] ?? "copies"}.`;
 }
 
 /** A plain form: it works without script, and sends itself where there is one. */
@@ -296,6 +304,7 @@ function csvOf(
     ]),
     [
       { name: "common window", unit: "kcal/mol", value: pooled.carriedKcal },
+      { name: "weights", value: [...new Set(found.molecules.map((one) => one.weighedBy))].join(", ") },
       { name: "share to keep", unit: "%", value: 100 * settings.share },
       { name: "temperature", unit: "K", value: settings.temperatureK },
       { name: "level", value: found.level ?? "" },

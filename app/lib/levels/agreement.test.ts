@@ -277,6 +277,28 @@ describe("the story in one sentence", () => {
     expect(plain(story.second)).toContain("share 36 % of the population and hardly agree on the order");
   });
 
+  it("says that the reference's own lowest has no energy at the level, and what is left", () => {
+    const [level, reference] = [
+      [0, 0.4, 1.1],
+      [0, 0.3, 1],
+    ];
+    const comparison = compareLevels({ level: level!, reference: reference!, temperatureK: T });
+    const story = comparisonStory({
+      level: "part",
+      reference: "cheap",
+      nameOf: (i) => `c${i + 2}`,
+      comparison,
+      meeting: meetLowest(level!, reference!),
+      window: narrowestWindow(windowCurve(level!, comparison.referencePopulations), 0.95),
+      covered: { covered: 0.467, lowest: { name: "c1", share: 0.533 } },
+    });
+    expect(plain(story.text)).toBe(
+      "The lowest conformer of cheap, c1 (53 % of its population), has no energy at part, and shares are of the remaining 47 %: " +
+        "of the others, part finds the lowest conformer of cheap, c2; " +
+        "to keep 95 % of the cheap population that has an energy at part (47 % of it) takes all 3 conformers, 1.10 kcal/mol of part.",
+    );
+  });
+
   it("tells agreement, a window that keeps all, and a lone conformer", () => {
     const same = tell([0, 1, 2, 3], [0, 1, 2, 3], ["A", "B"], (i) => `c${i + 1}`);
     expect(same.text).toContain("A finds the lowest conformer of B, c1; ");

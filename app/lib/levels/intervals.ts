@@ -2,6 +2,9 @@ import { type Bootstrap, bootstrap, type Interval } from "../stats/bootstrap.ts"
 import { type ComparisonInput, compareLevels } from "./compare.ts";
 import { WINDOW_SHARES } from "./window.ts";
 
+/** Fewest conformers whose resamples say anything: of two or three most resamples hold one of them twice. */
+export const FEWEST_RESAMPLED = 4;
+
 /** Figures of a comparison that get an interval. */
 export const INTERVAL_NAMES = [
   "msd",

@@ -1,4 +1,6 @@
 import { type ColumnData, packColumn, unpackColumn } from "../column-data.ts";
+import { weigh } from "../thermo/boltzmann.ts";
+import { lowestPlace } from "./align.ts";
 
 /** Energies of one level over the frames of an ensemble, as a loader hands them to the page. */
 export interface LevelEnergiesView {
@@ -80,5 +82,41 @@ export function pairLevels(
     missingLevel,
     missingReference,
     left,
+  };
+}
+
+/** How much of the reference the comparison is about. */
+export interface CoveredReference {
+  /** Share of the reference population whose conformers have an energy at the level too, fraction. */
+  covered: number;
+  /** The reference's own lowest with its share, where it has no energy at the level; else null. */
+  lowest: { name: string; share: number } | null;
+}
+
+/**
+ * What the level leaves out of the reference: a comparison of those with both energies says nothing of the others, and
+ * they may be the most populated.
+ *
+ * @param level, reference by frame, as `unpackEnergies` gives them
+ * @example coveredReference(members, part, cheap, 298.15) // { covered: 0.47, lowest: { name: "c1", share: 0.53 } }
+ */
+export function coveredReference(
+  members: readonly Member[],
+  level: ColumnData,
+  reference: ColumnData,
+  temperatureK: number,
+): CoveredReference {
+  const known = members.filter(({ frame }) => reference.present[frame - 1] === 1);
+  if (known.length === 0) return { covered: 0, lowest: null };
+  const energies = Float64Array.from(known, ({ frame }) => reference.values[frame - 1]!);
+  const weights = Float64Array.from(known, ({ weight }) => weight);
+  const { populations } = weigh(energies, weights, temperatureK);
+  const has = ({ frame }: Member) => level.present[frame - 1] === 1;
+  const left = known.reduce((sum, member, k) => (has(member) ? sum : sum + populations[k]!), 0);
+  const place = lowestPlace(energies);
+  const first = known[place]!;
+  return {
+    covered: Math.max(0, 1 - left),
+    lowest: has(first) ? null : { name: first.name, share: populations[place]! },
   };
 }

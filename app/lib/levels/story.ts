@@ -1,6 +1,7 @@
 import { formatCount, formatEnergy, formatWindowToCarry, plural, withUnit } from "../format.ts";
 import { joinWords, shareWords } from "../workbench/findings.ts";
 import type { LevelComparison } from "./compare.ts";
+import type { CoveredReference } from "./level-energies.ts";
 import type { LowestMeeting } from "./ranking.ts";
 
 /** What the comparison says in plain words. */
@@ -25,6 +26,8 @@ export function comparisonStory(input: {
   comparison: LevelComparison;
   meeting: LowestMeeting;
   window: { share: number; kcal: number; count: number; next?: number };
+  /** What of the reference has an energy at the level; all of it where left out. */
+  covered?: CoveredReference;
 }): Story {
   const { level, reference, comparison, meeting, window } = input;
   const { n } = comparison;
@@ -34,8 +37,11 @@ export function comparisonStory(input: {
       second: "Bring the energies of the other conformers to see how far the levels agree.",
     };
   }
-  const first = constantWords(input) ?? (meeting.same ? sameLowest(input) : otherLowest(input));
-  const keep = `to keep ${shareWords(window.share)} of the ${reference} population`;
+  const first =
+    missingWords(input) + (constantWords(input) ?? (meeting.same ? sameLowest(input) : otherLowest(input)));
+  const covered = input.covered?.covered ?? 1;
+  const part = covered < 1 - 1e-9 ? ` that has an energy at ${level} (${shareWords(covered)} of it)` : "";
+  const keep = `to keep ${shareWords(window.share)} of the ${reference} population${part}`;
   const carried = withUnit(formatWindowToCarry(window.kcal, window.next), "kcal/mol");
   const carry =
     window.count === n
@@ -45,6 +51,16 @@ export function comparisonStory(input: {
 }
 
 type StoryInput = Parameters<typeof comparisonStory>[0];
+
+/** The reference's own lowest may have no energy at the level: then all that follows is about the others. */
+function missingWords({ level, reference, covered }: StoryInput): string {
+  if (!covered?.lowest) return "";
+  const { name, share } = covered.lowest;
+  return (
+    `The lowest conformer of ${reference}, ${name} (${shareWords(share)} of its population), has no energy at ${level}, ` +
+    `and shares are of the remaining ${shareWords(covered.covered)}: of the others, `
+  );
+}
 
 /** A level that gives all the same energy has no lowest conformer and no order. */
 function constantWords({ level, reference, comparison, meeting }: StoryInput): string | null {

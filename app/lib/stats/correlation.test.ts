@@ -82,6 +82,14 @@ it("equal rankings give exactly 1, ties or none", () => {
   for (let n = 3; n < 60; n++) {
     const x = Array.from({ length: n }, (_, k) => (k * 7919) % 101);
     expect(kendallTauB(x, x)).toBe(1);
+    const stretched = x.map((value) => 0.1 * value ** 3);
+    expect(spearman(x, stretched)).toBe(1);
+    expect(
+      spearman(
+        x,
+        stretched.map((value) => -value),
+      ),
+    ).toBe(-1);
     expect(
       kendallTauB(
         x,

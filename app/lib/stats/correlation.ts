@@ -35,7 +35,12 @@ export function pearson(x: ArrayLike<number>, y: ArrayLike<number>): number | nu
  */
 export function spearman(x: ArrayLike<number>, y: ArrayLike<number>): number | null {
   sameLength(x, y);
-  return pearson(midRanks(x), midRanks(y));
+  const [a, b] = [midRanks(x), midRanks(y)];
+  const rho = pearson(a, b);
+  if (rho === null) return null;
+  // Equal and opposite orders are 1 and -1 without the rounding that the sums would leave.
+  if (a.every((rank, i) => rank === b[i])) return 1;
+  return a.every((rank, i) => rank + b[i]! === a.length + 1) ? -1 : rho;
 }
 
 /**

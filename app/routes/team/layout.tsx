@@ -1,4 +1,4 @@
-import { href, Outlet } from "react-router";
+import { href, Outlet, useLocation } from "react-router";
 import { AppShell } from "~/components/layout/app-shell";
 import type { ShellHandle } from "~/components/layout/breadcrumbs";
 import { actorContext, requestIdContext } from "~/context";
@@ -23,7 +23,7 @@ export async function loader({ params, context }: Route.LoaderArgs) {
 
 export default function TeamLayout() {
   return (
-    <AppShell>
+    <AppShell results={useLocation().pathname.endsWith("/windows")}>
       <Outlet />
     </AppShell>
   );

@@ -20,6 +20,8 @@ export interface SeriesMolecule {
   level: number[];
   reference: number[];
   weights: number[];
+  /** What they are. */
+  weighedBy: "copies" | "degeneracy";
 }
 
 export interface SeriesLevels {
@@ -92,10 +94,16 @@ async function loadMolecule(
   const [a, b] = await Promise.all([level, reference].map((name) => energiesOf(levels, name, strip.length)));
   if (!a || !b) return null;
   const kind = levels.find(({ name }) => name === reference)?.energyKind ?? "electronic";
-  const weights = chooseWeights(result.kept, kind).values;
+  const { values: weights, kind: weighedBy } = chooseWeights(result.kept, kind);
   const idOf = (name: string) => levels.find((one) => one.name === name)?.id ?? "";
   const ids = { level: idOf(level), reference: idOf(reference) };
-  const molecule = { ids, level: [] as number[], reference: [] as number[], weights: [] as number[] };
+  const molecule = {
+    ids,
+    weighedBy,
+    level: [] as number[],
+    reference: [] as number[],
+    weights: [] as number[],
+  };
   for (const [k, { frame }] of result.kept.entries()) {
     const [x, y] = [a(frame), b(frame)];
     if (x === null || y === null) continue;
