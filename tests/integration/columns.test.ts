@@ -298,6 +298,20 @@ describe("a table", () => {
     expect(await storedRows()).toEqual(before);
   });
 
+  it("says in a preview what a replacement of another kind would be refused with", async () => {
+    const { id } = await ensemble(3);
+    await add(id, table("frame,part [kcal/mol]\n1,0\n2,1\n3,2\n"), { kind: "property" });
+    const file = table("frame,part [kcal/mol]\n1,0\n2,1\n3,3\n");
+    const asEnergy = JSON.stringify([{ column: 2, kind: "energy" }]);
+    const stated = { replace: "true", columns: asEnergy };
+    const { body } = await add(id, file, { ...stated, preview: "true" });
+    const refused = await add(id, file, stated);
+    expect(refused.status).toBe(409);
+    expect(body.columns[0]).toMatchObject({ kind: "energy", exists: true, conflict: refused.body.detail });
+    const fits = await add(id, file, { replace: "true", preview: "true" });
+    expect(fits.body.columns[0]).toMatchObject({ kind: "property", exists: true, conflict: null });
+  });
+
   it("asks for a unit with the spread that each would mean", async () => {
     const { id } = await ensemble(3);
     const file = table("frame,E\n1,-1.5\n2,-1.6\n3,-1.75\n");

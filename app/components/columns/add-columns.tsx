@@ -56,8 +56,9 @@ function Looked({ added, preview }: { added: AddedFile; preview: ColumnsPreview 
   const { fields, busy } = added;
   const energies = preview.columns.some(({ kind }) => kind === "energy");
   const taken = preview.columns.filter(({ exists }) => exists);
-  const open = preview.questions.length;
   const replaces = fields.replace === "true";
+  const clashes = replaces ? taken.flatMap(({ conflict }) => (conflict === null ? [] : [conflict])) : [];
+  const open = preview.questions.length;
   return (
     <>
       <p className="mt-2 max-w-read">{preview.match.text}.</p>
@@ -71,21 +72,30 @@ function Looked({ added, preview }: { added: AddedFile; preview: ColumnsPreview 
       {energies ? <EnergyFacts added={added} /> : null}
       <Messages preview={preview} />
       {taken.length > 0 ? (
-        <Checkbox
-          className="mt-6 max-w-read"
-          checked={replaces}
-          onChange={() => added.answer({ replace: replaces ? "" : "true" })}
-        >
+        <Checkbox className="mt-6 max-w-read" checked={replaces} onChange={() => added.putInPlace(!replaces)}>
           Put these numbers in the place of {taken.map(({ name }) => `“${name}”`).join(", ")}, which{" "}
           {taken.length === 1 ? "is" : "are"} there already.
         </Checkbox>
+      ) : null}
+      {clashes.length > 0 ? (
+        <Note tone="held" className="mt-4">
+          <ul role="alert" className="grid gap-1">
+            {clashes.map((sentence) => (
+              <li key={sentence}>{sentence}</li>
+            ))}
+          </ul>
+        </Note>
       ) : null}
       <div className="mt-6 flex flex-wrap items-center gap-4">
         <Button
           kind="primary"
           onClick={added.save}
           disabled={
-            busy !== null || open > 0 || preview.columns.length === 0 || (taken.length > 0 && !replaces)
+            busy !== null ||
+            open > 0 ||
+            preview.columns.length === 0 ||
+            (taken.length > 0 && !replaces) ||
+            clashes.length > 0
           }
         >
           Add {plural(preview.columns.length, "column")}

@@ -16,6 +16,8 @@ export interface AddedFile {
   /** Sets answers and looks again; "" takes an answer back. */
   answer(fields: Record<string, string>): void;
   decide(choice: ColumnChoiceField): void;
+  /** Puts the numbers in the place of the columns of their names, each as the kind that it is shown as. */
+  putInPlace(on: boolean): void;
   save(): void;
   clear(): void;
 }
@@ -82,6 +84,20 @@ export function useAddedFile(ensembleId: string): AddedFile {
       const next = [...choices.filter(({ column }) => column !== choice.column), { ...before, ...choice }];
       setChoices(next);
       if (file) void look(file, fields, next);
+    },
+    putInPlace(on) {
+      const { replace: _, ...others } = fields;
+      const answers = on ? { ...others, replace: "true" } : others;
+      // Asked to replace, the server would take the kind of the old column where none is stated.
+      const stated = (preview?.columns ?? []).flatMap(({ column, kind, exists }) =>
+        exists && column !== null ? [{ ...choices.find((one) => one.column === column), column, kind }] : [],
+      );
+      const next = on
+        ? [...choices.filter((one) => !stated.some(({ column }) => column === one.column)), ...stated]
+        : [...choices];
+      setFields(answers);
+      setChoices(next);
+      if (file) void look(file, answers, next);
     },
     async save() {
       if (file === null) return;

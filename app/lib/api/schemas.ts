@@ -433,6 +433,10 @@ export const columnsPreviewSchema = z
         quantity: z.string().nullable(),
         count: z.number().int(),
         exists: z.boolean().meta({ description: "A column of this name is there already." }),
+        conflict: z
+          .string()
+          .nullable()
+          .meta({ description: "Why it cannot take the place of that column, as the 409 says; else null." }),
       }),
     ),
     leftOut: z.array(z.object({ column: z.number().int().nullable(), header: z.string(), why: z.string() })),

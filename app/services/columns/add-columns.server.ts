@@ -19,11 +19,11 @@ import { statedAnswers } from "./column-answers.ts";
 import { detectFormat } from "./detect-format.ts";
 import type { FilePlan } from "./plan.ts";
 import { planStructureFile } from "./plan-structures.server.ts";
-import { planTableFile } from "./plan-table.server.ts";
+import { kindsOf, planTableFile } from "./plan-table.server.ts";
 import { type ReceivedFile, receiveFile } from "./receive-file.server.ts";
 import { recomputeDerived } from "./recompute-derived.server.ts";
 import { standingColumns } from "./standing-columns.server.ts";
-import { lockEnsemble, storeColumn, touchEnsemble } from "./store-column.server.ts";
+import { kindClash, lockEnsemble, storeColumn, touchEnsemble } from "./store-column.server.ts";
 import { loadTarget, type TargetEnsemble } from "./target.server.ts";
 
 type At = Grant & { ensembleId: string };
@@ -90,7 +90,11 @@ async function namesOf(ensembleId: string, on: Queryable = db): Promise<Set<stri
 }
 
 async function previewOf(name: string, plan: FilePlan, target: TargetEnsemble): Promise<ColumnsPreview> {
-  const names = await namesOf(target.ensembleId);
+  const kinds = await kindsOf(target.ensembleId);
+  const clash = (column: { name: string; kind: "energy" | "property" }) => {
+    const before = kinds.get(column.name);
+    return before === undefined ? null : kindClash(column.name, before, column.kind);
+  };
   const { type, delimiter, header, rows, leftOut, match, questions, messages } = plan;
   return {
     file: name,
@@ -106,7 +110,8 @@ async function previewOf(name: string, plan: FilePlan, target: TargetEnsemble): 
       atom: column.atom ?? null,
       quantity: column.quantity ?? null,
       count: column.data.present.reduce((sum, flag) => sum + flag, 0),
-      exists: names.has(column.name),
+      exists: kinds.has(column.name),
+      conflict: clash(column),
     })),
   };
 }

@@ -27,7 +27,7 @@ async function labelsOf(ensembleId: string): Promise<Map<string, number[]>> {
 }
 
 /** What the columns of an ensemble are, by name. */
-async function kindsOf(ensembleId: string): Promise<Map<string, "energy" | "property">> {
+export async function kindsOf(ensembleId: string): Promise<Map<string, "energy" | "property">> {
   const rows = await db
     .select({ name: columns.name, kind: columns.kind })
     .from(columns)

@@ -74,10 +74,20 @@ function taken(name: string, found: "energy" | "property"): DomainError {
   });
 }
 
-function checkKind(name: string, before: "energy" | "property", now: "energy" | "property"): void {
-  if (before === now) return;
+/** Why numbers of one kind cannot take the place of a column of the other; null where they can. */
+export function kindClash(
+  name: string,
+  before: "energy" | "property",
+  now: "energy" | "property",
+): string | null {
+  if (before === now) return null;
   const [was, is] = before === "energy" ? ["a level", "a property"] : ["a property", "a level"];
-  const message = `"${name}" is ${was} of this ensemble, and the new numbers are ${is}: one cannot take the place of the other. Give it another name.`;
+  return `"${name}" is ${was} of this ensemble, and the new numbers are ${is}: one cannot take the place of the other. Give it another name.`;
+}
+
+function checkKind(name: string, before: "energy" | "property", now: "energy" | "property"): void {
+  const message = kindClash(name, before, now);
+  if (message === null) return;
   throw new DomainError("conflict", "The name is taken", message, { faults: [{ field: "name", message }] });
 }
 
