@@ -1,14 +1,38 @@
 import { ChartFrame } from "~/components/charts/chart-frame";
+import { FigureFacts } from "~/components/charts/figure-facts";
 import { ChartText, Plot, usePlot } from "~/components/charts/plot";
 import { levelColour } from "~/components/ui/level-marker";
+import { useWorkbench } from "~/components/workbench/workbench-context";
 import { formatCount, formatPercent, formatWindowToCarry, plural, withUnit } from "~/lib/format";
 import { nextWindow, type WindowReading, type WindowStep } from "~/lib/levels/window";
 import type { WindowBand } from "~/lib/levels/window-band";
 import { shareWords } from "~/lib/workbench/findings";
 import type { Comparison } from "./use-comparison";
 
-/** Reference population that a window at the level keeps, with drop lines where it reaches 90, 95 and 99 %. */
-export function WindowChart({ found, band }: { found: Comparison; band: WindowBand | null }) {
+/** Reference population that a window at the level keeps; its files say how the band behind it was drawn. */
+export function WindowChart(props: { found: Comparison; band: WindowBand | null }) {
+  const { found, band } = props;
+  const { sigmaKcal } = useWorkbench().state.compare;
+  return (
+    <FigureFacts
+      facts={
+        band
+          ? [
+              { name: `error of ${found.reference.name}`, unit: "kcal/mol", value: sigmaKcal },
+              { name: "draws", value: band.draws },
+              { name: "generator", value: band.generator },
+              { name: "seed", value: band.seed },
+            ]
+          : []
+      }
+    >
+      <WindowFigure {...props} />
+    </FigureFacts>
+  );
+}
+
+/** With drop lines where it reaches 90, 95 and 99 %. */
+function WindowFigure({ found, band }: { found: Comparison; band: WindowBand | null }) {
   const { level, reference, comparison, steps, window } = found;
   const last = steps.at(-1)?.kcal ?? 0;
   const needed = Math.max(window.kcal, comparison.window[2]?.kcal ?? 0);

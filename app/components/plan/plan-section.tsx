@@ -19,6 +19,7 @@ import { chooseLevels } from "~/lib/levels/better-level";
 import type { LevelEnergiesView, Member } from "~/lib/levels/level-energies";
 import { alignPlans, withChosen } from "~/lib/plan/chain";
 import type { Plan, PlanSet } from "~/lib/plan/plan";
+import { afterKnown, planFacts } from "~/lib/plan/plan-facts";
 import { firstPlans } from "~/lib/plan/start";
 import { hoursOpen, planAssumptions, planFinding, planText, windowFigure } from "~/lib/plan/words";
 import type { RemovedPlan, SavedPlans } from "~/services/plans/list-plans.server";
@@ -212,12 +213,15 @@ function PlanCharts({
   const firstStep = report?.outcomes[set.chosen]?.steps[0] ?? null;
   const firstCut = plan?.steps[0]?.cut ?? null;
   if (figures.members.length === 0 || !plan) return null;
+  const drawn = report?.outcomes[set.chosen];
   return (
     <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2" aria-busy={report === null || band === null}>
       {report === null ? (
         <Skeleton className="h-96 w-full" />
       ) : !hoursOpen(plan) && report.outcomes.some(({ cost }) => cost > 0) ? (
-        <CostChart set={set} report={report} />
+        <FigureFacts facts={drawn ? planFacts(plan, startName, drawn) : []}>
+          <CostChart set={set} report={report} />
+        </FigureFacts>
       ) : (
         <StatePanel title="No cost to draw">
           <p>
@@ -229,14 +233,16 @@ function PlanCharts({
         </StatePanel>
       )}
       {band ? (
-        <FirstWindowChart
-          band={band}
-          windowKcal={firstStep?.windowKcal ?? null}
-          figure={firstStep && firstCut ? windowFigure(firstCut, firstStep) : ""}
-          startName={startName}
-          ordinal={ordinal}
-          lastName={plan.steps.at(-1)?.name ?? ""}
-        />
+        <FigureFacts facts={planFacts(plan, startName, band, afterKnown(plan))}>
+          <FirstWindowChart
+            band={band}
+            windowKcal={firstStep?.windowKcal ?? null}
+            figure={firstStep && firstCut ? windowFigure(firstCut, firstStep) : ""}
+            startName={startName}
+            ordinal={ordinal}
+            lastName={plan.steps.at(-1)?.name ?? ""}
+          />
+        </FigureFacts>
       ) : (
         <Skeleton className="h-96 w-full" />
       )}

@@ -4,6 +4,7 @@ import { alignPlans, carriedOn, withChosen, withoutStep, withStep } from "./chai
 import { evaluatePlan } from "./evaluate.ts";
 import { keptOrder, marginalCosts } from "./front.ts";
 import { type PlanSet, type PlanStep, planSetSchema } from "./plan.ts";
+import { afterKnown, planFacts } from "./plan-facts.ts";
 import { firstPlans } from "./start.ts";
 import { formatHours, waitingFigure } from "./words.ts";
 
@@ -137,6 +138,25 @@ describe("what each further percent costs", () => {
     ];
     expect(keptOrder(plans)).toEqual([2, 3, 4, 0, 1]);
     expect(marginalCosts(plans)).toEqual([expect.closeTo(50 / 3, 9), null, null, null, 0]);
+  });
+});
+
+describe("what a figure of a plan belongs to", () => {
+  it("names the last level, the errors that count, the draws and the seed, each once", () => {
+    const { plan } = withStep(set(), 1, NEXT).plans[1]!;
+    const recipe = { draws: 500, seed: 412, generator: "g" };
+    const facts = planFacts(plan, "A", recipe, afterKnown(plan));
+    expect(facts.map(({ name, value }) => [name, value])).toEqual([
+      ["reference", "next level"],
+      ["error of step 2, B to next level", 0.3],
+      ["error of next level", 0.3],
+      ["draws", 500],
+      ["generator", "g"],
+      ["seed", 412],
+    ]);
+    const before = { ...plan, steps: [NEXT, plan.steps[0]!] };
+    expect(planFacts(before, "A", recipe)[1]!.name).toBe("error of step 1, A to next level");
+    expect(planFacts(before, "A", recipe, afterKnown(before))).toHaveLength(5);
   });
 });
 
