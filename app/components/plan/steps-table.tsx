@@ -118,10 +118,10 @@ export function StepsTable({
             </Th>
             <Th className="max-sm:hidden">Carry</Th>
             <Th align="right">Carried</Th>
-            <Th align="right" unit="core hours" className="max-sm:hidden">
+            <Th align="right" unit="core hours" className="max-xl:whitespace-normal max-sm:hidden">
               Each
             </Th>
-            <Th unit="core hours" className="max-sm:hidden">
+            <Th unit="core hours" className="max-xl:whitespace-normal max-sm:hidden">
               Cost
             </Th>
             <Th align="right" unit="%">
@@ -185,7 +185,7 @@ export function StepsTable({
             <Td className="max-sm:hidden" />
             <Td />
             <Td className="max-sm:hidden" />
-            <Td className="max-sm:hidden">
+            <Td wrap className="max-sm:hidden">
               <b>{outcome ? costFigure(plan, outcome) : ABSENT}</b>
             </Td>
             <Td align="right" wrap>
@@ -335,7 +335,7 @@ function StepRow({
         />
       </Td>
       <Td align="right">{carriedWords(outcome)}</Td>
-      <Td align="right" className="max-sm:hidden">
+      <Td align="right" wrap className="max-sm:hidden">
         <HoursDialog
           name={step.name}
           source={step.hours}
@@ -347,7 +347,9 @@ function StepRow({
       </Td>
       <Td className="max-sm:hidden">
         <span className="flex items-center gap-3">
-          <span className="w-14 text-right">{outcome && !open ? formatHours(outcome.cost) : ABSENT}</span>
+          <span className="w-14 text-right max-xl:w-auto">
+            {outcome && !open ? formatHours(outcome.cost) : ABSENT}
+          </span>
           {outcome && outcome.cost > 0 ? (
             <svg width={BAR_PX} height="12" aria-hidden="true" className="max-xl:hidden">
               <rect
