@@ -6,8 +6,7 @@ import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import type { AveragesView, SaidView } from "~/lib/averages/averages-view";
-import { digitsFor } from "~/lib/averages/words";
-import { atomName } from "~/lib/chem/elements";
+import { digitsFor, signalName } from "~/lib/averages/words";
 import { ABSENT, fixed, formatDate, formatTemperature, plural, signed } from "~/lib/format";
 import { toCsv } from "~/lib/workbench/tsv";
 import { AtomDrawing } from "./atom-drawing";
@@ -25,6 +24,7 @@ export function AtomTable({
   list,
   averaged,
   weighed,
+  sigma,
   view,
 }: {
   quantity: string;
@@ -32,6 +32,8 @@ export function AtomTable({
   list: readonly AveragedProperty[];
   averaged: Averaged;
   weighed: WeighedConformers;
+  /** Error of the level, kcal/mol; null without one. */
+  sigma: number | null;
   view: AveragesView;
 }) {
   const { ensemble, temperatureK, coordinates, result } = useWorkbench();
@@ -44,7 +46,14 @@ export function AtomTable({
     const digits = Math.max(2, digitsFor(unit, one.average.value));
     const members = one.property.atoms ?? [];
     const split = splitOf(view.said, members);
-    return { one, mover, digits, members, split, name: groupName(members, ensemble.elements) };
+    return {
+      one,
+      mover,
+      digits,
+      members,
+      split,
+      name: signalName(members, ensemble.elements, ensemble.bonds),
+    };
   });
   const apart = rows.filter((row) => row.split !== null);
   const picked = rows.find((row) => row.one.property.id === chosen)?.one.property.atoms ?? [];
@@ -66,6 +75,9 @@ export function AtomTable({
           `covered at ${formatTemperature(temperatureK)} K`,
           "level",
           "weights",
+          "sigma [kcal/mol]",
+          "draws",
+          "seed",
         ],
         rows.map(({ one, name }) => [
           name,
@@ -75,6 +87,9 @@ export function AtomTable({
           one.average.covered,
           weighed.level.name,
           weighed.weights.kind,
+          averaged.draws === null ? null : sigma,
+          averaged.draws,
+          averaged.draws === null ? null : averaged.seed,
         ]),
       ),
     );
@@ -127,7 +142,7 @@ export function AtomTable({
               <Th align="right" unit={unit ?? undefined}>
                 Uncertainty
               </Th>
-              <Th align="right" unit={unit ?? undefined} className="max-lg:hidden">
+              <Th align="right" unit={unit ?? undefined} className="max-lg:hidden print:table-cell!">
                 Spread
               </Th>
               <Th align="right" unit="change without it" className="max-sm:hidden">
@@ -164,7 +179,7 @@ export function AtomTable({
                       ? ABSENT
                       : `± ${fixed(one.error.sd, digits)}`}
                   </Td>
-                  <Td align="right" className="max-lg:hidden">
+                  <Td align="right" className="max-lg:hidden print:table-cell!">
                     {fixed(one.average.spread, digits)}
                   </Td>
                   <Td align="right" className="max-sm:hidden">
@@ -218,7 +233,17 @@ export function AtomTable({
           </tbody>
         </Table>
       </div>
-      <MeasuredBlock quantity={quantity} list={list} view={view} />
+      <MeasuredBlock
+        {...{ quantity, list, view }}
+        facts={{
+          temperatureK,
+          level: weighed.level.name,
+          weights: weighed.weights.kind,
+          sigma: averaged.draws === null ? null : sigma,
+          draws: averaged.draws,
+          seed: averaged.draws === null ? null : averaged.seed,
+        }}
+      />
     </section>
   );
 }
@@ -267,7 +292,3 @@ function splitOf(said: SaidView, members: readonly number[]) {
 
 const splitWords = ({ by, at }: SaidView["splits"][number]) =>
   `split by hand${by === null ? "" : ` by ${by}`}, ${formatDate(at)}`;
-
-function groupName(atoms: readonly number[], elements: readonly number[]): string {
-  return atoms.map((atom) => atomName(elements, atom)).join(", ");
-}

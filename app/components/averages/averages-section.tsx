@@ -61,6 +61,8 @@ export function AveragesSection({ view }: { view: AveragesView }) {
             { name: "level", value: weighed.level.name },
             { name: "weights", value: weighed.weights.kind },
             { name: "sigma", unit: "kcal/mol", value: error.sigma },
+            { name: "draws", value: averaged.draws },
+            { name: "seed", value: averaged.draws === null ? null : averaged.seed },
           ]}
         >
           <Filled view={view} weighed={weighed} error={error} averaged={averaged} />
@@ -211,6 +213,7 @@ function Filled({
           list={list}
           averaged={averaged}
           weighed={weighed}
+          sigma={error.sigma}
           view={view}
         />
       ))}

@@ -2,14 +2,16 @@ import { Download } from "lucide-react";
 import { useMemo } from "react";
 import { saveText } from "~/components/charts/export-figure";
 import { Button } from "~/components/ui/button";
+import { Note } from "~/components/ui/note";
 import { Segments } from "~/components/ui/segments";
+import { TextButton } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { assignmentPairs, compareMeasured } from "~/lib/averages/assignment";
 import type { AveragesView } from "~/lib/averages/averages-view";
-import { areShieldings } from "~/lib/averages/measured";
-import { agreementCsv, besideCsv } from "~/lib/averages/measured-csv";
-import { atomName } from "~/lib/chem/elements";
-import { formatDateTime, plural } from "~/lib/format";
+import { areShieldings, asideWords, shieldingLike } from "~/lib/averages/measured";
+import { type AverageFacts, agreementCsv, besideCsv } from "~/lib/averages/measured-csv";
+import { atomName, symbolOf } from "~/lib/chem/elements";
+import { fixed, formatDateTime, plural } from "~/lib/format";
 import { makeGraph } from "~/lib/structure";
 import { AssignmentTable } from "./assignment-table";
 import { KeepMeasured } from "./keep-measured";
@@ -24,18 +26,24 @@ export function MeasuredBlock({
   quantity,
   list,
   view,
+  facts,
 }: {
   quantity: string;
   list: readonly AveragedProperty[];
   view: AveragesView;
+  /** What the averages belong to; it goes into the files. */
+  facts: AverageFacts;
 }) {
   const { ensemble, temperatureK } = useWorkbench();
   const { elements, bonds } = ensemble;
-  const measured = useMeasured(quantity, view.said);
+  // The list is made anew with every temperature, its groups are not: what follows from them stays as it is.
+  const key = JSON.stringify(list.map(({ property }) => property.atoms ?? []));
+  const groups = useMemo((): number[][] => JSON.parse(key), [key]);
+  const fromOne = useMemo(() => groups.map((atoms) => atoms.map((atom) => atom + 1)), [groups]);
+  const measured = useMeasured(quantity, view.said, fromOne);
   const { state, change } = measured;
   const unit = list[0]?.property.unit ?? null;
   const shieldings = areShieldings(state, unit);
-  const groups = useMemo(() => list.map(({ property }) => property.atoms ?? []), [list]);
   const pairs = useMemo(() => {
     const isotopes = view.isotopes === null ? undefined : Uint16Array.from(view.isotopes);
     const graph = makeGraph(Uint8Array.from(elements), Int32Array.from(bonds), isotopes);
@@ -55,6 +63,7 @@ export function MeasuredBlock({
     }),
     { shieldings, scaling: state.scaling, pairs, swapped: state.swapped },
   );
+  const like = unit === "ppm" && !shieldings ? shieldingLike(nuclei) : [];
   const names = new Map(
     groups.map((atoms) => [(atoms[0] ?? 0) + 1, atoms.map((atom) => atomName(elements, atom)).join(", ")]),
   );
@@ -71,7 +80,8 @@ export function MeasuredBlock({
   };
   const said = view.said.measured.find((one) => one.quantity === quantity);
   const homeless = [...state.values.keys()].filter((atom) => !names.has(atom));
-  const anything = state.values.size > 0 || state.scaling.size > 0;
+  const aside = state.aside ?? [];
+  const anything = state.values.size > 0 || aside.length > 0 || state.scaling.size > 0;
   const save = (name: string, text: string) => saveText(name, "text/csv", text);
   const shown = { quantity, unit, nuclei, pairs: assignments, nameOf };
   return (
@@ -99,6 +109,18 @@ export function MeasuredBlock({
             onChange={(are) => change({ are })}
           />
         ) : null}
+        {like.length > 0 ? (
+          <Note tone="mark">
+            <p>
+              These look like shieldings: against the measured shifts they run with slope{" "}
+              {like.map(({ z, slope }) => `${fixed(slope, 3)} (${symbolOf(z)})`).join(", ")}, and shifts would
+              run with a slope near 1.{" "}
+              <TextButton className="print:hidden" onClick={() => change({ are: "shieldings" })}>
+                Take them as shieldings and scale them
+              </TextButton>
+            </p>
+          </Note>
+        ) : null}
         <MeasuredPaste
           groupOf={groupOf}
           onRead={(values) => change({ values: new Map([...state.values, ...values]) })}
@@ -120,6 +142,12 @@ export function MeasuredBlock({
           entered={state.values}
           kind={shieldings ? "shift" : quantity}
         />
+        {aside.length > 0 ? (
+          <p className="max-w-read text-ink-2">
+            {asideWords(aside, (atom) => atomName(elements, atom - 1), shieldings ? "ppm" : unit)} Such a
+            value comes back when its atoms are one signal again.
+          </p>
+        ) : null}
         {homeless.length > 0 ? (
           <p className="max-w-read text-ink-2">
             Kept, but no row of its own now: the measured {homeless.length === 1 ? "value" : "values"} of{" "}
@@ -130,7 +158,7 @@ export function MeasuredBlock({
           <Button
             size="sm"
             icon={<Download aria-hidden="true" />}
-            onClick={() => save("measured.csv", besideCsv([shown]))}
+            onClick={() => save("measured.csv", besideCsv([shown], facts))}
           >
             CSV of the values
           </Button>
@@ -138,12 +166,12 @@ export function MeasuredBlock({
             size="sm"
             icon={<Download aria-hidden="true" />}
             disabled={state.values.size === 0}
-            onClick={() => save("agreement.csv", agreementCsv([shown]))}
+            onClick={() => save("agreement.csv", agreementCsv([shown], facts))}
           >
             CSV of the errors
           </Button>
-          {state.values.size > 0 ? (
-            <Button size="sm" onClick={() => change({ values: new Map(), swapped: new Set() })}>
+          {state.values.size > 0 || aside.length > 0 ? (
+            <Button size="sm" onClick={() => change({ values: new Map(), swapped: new Set(), aside: [] })}>
               Clear the measured values
             </Button>
           ) : null}

@@ -13,16 +13,8 @@ import { fromDefinition } from "~/lib/averages/observable";
 import { couplingWords, observableWords } from "~/lib/averages/observable-words";
 import type { PropertyValues } from "~/lib/averages/property-set";
 import { shownAveragesCsv } from "~/lib/averages/shown-csv";
-import { digitsFor } from "~/lib/averages/words";
-import {
-  ABSENT,
-  fixed,
-  formatCount,
-  formatEnergy,
-  formatPopulation,
-  formatTemperature,
-  withUnit,
-} from "~/lib/format";
+import { coveredShare, digitsFor } from "~/lib/averages/words";
+import { ABSENT, fixed, formatCount, formatEnergy, formatTemperature, withUnit } from "~/lib/format";
 import { makeGraph } from "~/lib/structure";
 import { RuleName } from "./rule-name";
 import type { Averaged, AveragedProperty } from "./use-averages";
@@ -53,7 +45,8 @@ export function PropertyTable({
   const { ensemble } = useWorkbench();
   const scalars = averaged.properties.filter(({ property }) => property.quantity === null);
   return (
-    <section className="mt-9">
+    // On paper the table stays in one piece where a page can hold it.
+    <section className="mt-9 print:break-inside-avoid">
       <BlockHead title="Properties of the ensemble">
         {ensemble.mayCompute ? (
           <ButtonLink size="sm" to={`/ensembles/${ensemble.id}/columns`}>
@@ -75,7 +68,7 @@ export function PropertyTable({
                 {formatTemperature(kelvin)} K
               </Th>
             ))}
-            <Th align="right" unit="of the shapes" className="max-xl:hidden">
+            <Th align="right" unit="of the shapes" className="max-xl:hidden print:table-cell!">
               Spread
             </Th>
             <Th align="right" unit="of the level">
@@ -114,7 +107,7 @@ export function PropertyTable({
               {averaged.temperatures.slice(1).map((kelvin) => (
                 <Td key={kelvin} className="max-sm:hidden" />
               ))}
-              <Td className="max-xl:hidden" />
+              <Td className="max-xl:hidden print:table-cell!" />
               <Td />
               <Td align="right" className="max-sm:hidden">
                 <Covered covered={group.covered} refused={group.covered < 0.9} />
@@ -166,6 +159,8 @@ function saveShown(
     level: weighed.level.name,
     weights: weighed.weights.kind,
     sigma,
+    draws: averaged.draws,
+    seed: averaged.seed,
     rows: averaged.properties.map((one) => ({ ...one, rule: one.property.rule })),
   });
   const kelvin = averaged.temperatures.map((one) => formatTemperature(one)).join(", ");
@@ -252,7 +247,7 @@ function PropertyRow({
                 { label: "conformers", value: formatCount(weighed.kept.length) },
                 { label: "weighed by", value: `${weighed.level.name}, ${weighed.weights.kind}` },
                 { label: "temperature", value: withUnit(formatTemperature(averaged.temperatures[k]), "K") },
-                { label: "covered", value: withUnit(formatPopulation(at.covered), "%") },
+                { label: "covered", value: withUnit(coveredShare(at.covered), "%") },
                 ...(at.resultant === null ? [] : [{ label: "R", value: fixed(at.resultant, 3) }]),
                 ...(one.error?.low != null && one.error.high !== null
                   ? [
@@ -273,7 +268,7 @@ function PropertyRow({
           )}
         </Td>
       ))}
-      <Td align="right" className="max-xl:hidden">
+      <Td align="right" className="max-xl:hidden print:table-cell!">
         {fixed(average.spread, digits)}
       </Td>
       <Td align="right">
@@ -307,7 +302,7 @@ function Uncertainty({
 
 /** Share of the population with a value; a badge where some is missing. */
 export function Covered({ covered, refused }: { covered: Average["covered"]; refused: boolean }) {
-  const figure = formatPopulation(covered);
+  const figure = coveredShare(covered);
   if (refused) return <Badge>{figure}, not averaged</Badge>;
   return covered < 1 ? <Badge>{figure}</Badge> : figure;
 }

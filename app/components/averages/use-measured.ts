@@ -6,6 +6,7 @@ import {
   measuredIn,
   measuredState,
   nothingMeasured,
+  settle,
   withMeasured,
   writeMeasured,
 } from "~/lib/averages/measured";
@@ -23,25 +24,33 @@ export interface Measured {
 }
 
 /** Measured values of a per-atom quantity: kept with the ensemble; until then a draft that the address holds. */
-export function useMeasured(quantity: string, said: SaidView): Measured {
+export function useMeasured(
+  quantity: string,
+  said: SaidView,
+  /** Atoms (from 1) of each signal as it is now; one object while they are the same. */
+  groups: readonly (readonly number[])[],
+): Measured {
   const { search, pathname } = useLocation();
   const navigate = useNavigate();
   const kept = useMemo(() => {
     const record = said.measured.find((one) => one.quantity === quantity);
-    return record ? measuredState(record) : nothingMeasured(quantity);
-  }, [said, quantity]);
-  const draft = useMemo(() => measuredIn(new URLSearchParams(search), quantity), [search, quantity]);
+    return settle(record ? measuredState(record) : nothingMeasured(quantity), groups);
+  }, [said, quantity, groups]);
+  const draft = useMemo(() => {
+    const written = measuredIn(new URLSearchParams(search), quantity);
+    return written === null ? null : settle(written, groups);
+  }, [search, quantity, groups]);
   const set = useCallback(
     (state: MeasuredState) => {
       const now = new URLSearchParams(search);
-      const next = searchOf(withMeasured(now, state, kept));
+      const next = searchOf(withMeasured(now, settle(state, groups), kept));
       if (next === searchOf(now)) return;
       void navigate(
         { pathname, search: next },
         { replace: true, preventScrollReset: true, defaultShouldRevalidate: false },
       );
     },
-    [search, pathname, navigate, kept],
+    [search, pathname, navigate, kept, groups],
   );
   const settled = draft !== null && writeMeasured(draft) === writeMeasured(kept);
   // What was a draft and is kept by now needs no place in the address.

@@ -1,7 +1,8 @@
 import { Table, Td, Th, Tr } from "~/components/ui/table";
+import { asideWords } from "~/lib/averages/measured";
 import { agreementWords, assignmentWords, scalingWords } from "~/lib/averages/measured-words";
 import { symbolOf } from "~/lib/chem/elements";
-import { atomNames, type EditionMeasured } from "~/lib/edition/measured";
+import { atomNames, type EditionMeasured, setAsideIn } from "~/lib/edition/measured";
 import type { EditionView } from "~/lib/edition/views";
 import { ABSENT, fixed, formatTemperature, signed } from "~/lib/format";
 import { EditionHead } from "./edition-head";
@@ -27,6 +28,7 @@ function Quantity({ measured, elements }: { measured: EditionMeasured; elements:
   const groups = new Map(nuclei.flatMap((one) => one.groups.map(({ atoms }) => [atoms[0] ?? 0, atoms])));
   const nameOf = (atom: number) => atomNames(elements, groups.get(atom) ?? [atom]);
   const shown = unit ?? undefined;
+  const aside = setAsideIn(measured);
   return (
     <div className="mt-4">
       <h3 className="text-sm font-semibold">{quantity}</h3>
@@ -50,6 +52,11 @@ function Quantity({ measured, elements }: { measured: EditionMeasured; elements:
           </p>
         ),
       )}
+      {aside.length > 0 ? (
+        <p className="keep figures mt-2 max-w-read text-ink-2">
+          {asideWords(aside, (atom) => atomNames(elements, [atom]), shieldings ? "ppm" : unit)}
+        </p>
+      ) : null}
       {pairs.length > 0 ? (
         <p className="keep figures mt-2 max-w-read text-ink-2">
           Pairs that could be assigned either way.{" "}

@@ -19,6 +19,10 @@ export const measuredRecordSchema = z.object({
   are: z.enum(["shieldings", "shifts"]).nullable(),
   /** First atom of the group and its value, by rising atom. */
   values: z.array(z.tuple([atom, z.number()])),
+  /** All atoms that each value was measured for, by the first; absent in records of before this was kept. */
+  of: z.array(z.tuple([atom, z.array(atom).min(1)])).optional(),
+  /** Values measured for atoms that give no signal of their own now; they take no part. */
+  aside: z.array(z.object({ atoms: z.array(atom).min(1), value: z.number() })).optional(),
   /** Slope and intercept typed in, by atomic number. */
   scaling: z.array(z.object({ z: z.number().int(), slope: z.number(), intercept: z.number() })),
   /** First atoms of the pairs whose two values were exchanged. */

@@ -16,6 +16,33 @@ export interface MeasuredTable {
   nameOf: (atom: number) => string;
 }
 
+/** What averages belong to: a file that leaves the page names it in every row. */
+export interface AverageFacts {
+  temperatureK: number;
+  level: string;
+  weights: string;
+  /** kcal/mol, draws and seed of the uncertainty; null without one. */
+  sigma: number | null;
+  draws: number | null;
+  seed: number | null;
+}
+
+/** Head and cells of the facts; none for editions, whose content names them once. */
+function factCells(facts: AverageFacts | null): { head: string; cells: string[] } {
+  if (facts === null) return { head: "", cells: [] };
+  return {
+    head: ",temperature [K],level,weights,sigma [kcal/mol],draws,seed",
+    cells: [
+      numberCell(facts.temperatureK),
+      textCell(facts.level),
+      textCell(facts.weights),
+      numberCell(facts.sigma),
+      numberCell(facts.draws),
+      numberCell(facts.seed),
+    ],
+  };
+}
+
 const LINE_END = "\r\n";
 const file = (head: string, lines: readonly (readonly string[])[]) =>
   [head, ...lines.map((cells) => cells.join(","))].join(LINE_END) + LINE_END;
@@ -26,9 +53,10 @@ const file = (head: string, lines: readonly (readonly string[])[]) =>
  *
  * @example besideCsv([table]).split("\r\n")[0] // "quantity,unit,nucleus,atoms,average,computed,..."
  */
-export function besideCsv(tables: readonly MeasuredTable[]): string {
+export function besideCsv(tables: readonly MeasuredTable[], facts: AverageFacts | null = null): string {
+  const { head, cells } = factCells(facts);
   return file(
-    "quantity,unit,nucleus,atoms,average,computed,uncertainty,measured,difference,assignment,slope,intercept",
+    `quantity,unit,nucleus,atoms,average,computed,uncertainty,measured,difference,assignment,slope,intercept${head}`,
     tables.flatMap(({ quantity, unit, nuclei, pairs, nameOf }) => {
       const swapped = new Map(
         pairs.flatMap((pair) => pair.atoms.map((atom) => [atom, pair.swapped] as const)),
@@ -49,6 +77,7 @@ export function besideCsv(tables: readonly MeasuredTable[]): string {
             chosen === undefined ? "" : chosen ? "swapped" : "as entered",
             numberCell(line?.slope ?? null),
             numberCell(line?.intercept ?? null),
+            ...cells,
           ];
         }),
       );
@@ -62,9 +91,10 @@ export function besideCsv(tables: readonly MeasuredTable[]): string {
  *
  * @example agreementCsv([table]).split("\r\n")[0] // "quantity,unit,nucleus,of,assignment,n,mae,rmse,max,..."
  */
-export function agreementCsv(tables: readonly MeasuredTable[]): string {
+export function agreementCsv(tables: readonly MeasuredTable[], facts: AverageFacts | null = null): string {
+  const { head, cells } = factCells(facts);
   return file(
-    "quantity,unit,nucleus,of,assignment,n,mae,rmse,max,maxAt,m,b,correctedMae",
+    `quantity,unit,nucleus,of,assignment,n,mae,rmse,max,maxAt,m,b,correctedMae${head}`,
     tables.flatMap(({ quantity, unit, nuclei, pairs, nameOf }) => {
       const start = (z: number) => [textCell(quantity), textCell(unit ?? ""), symbolOf(z)];
       const all = nuclei.flatMap(({ z, agreement, farthest, line }) =>
@@ -104,7 +134,7 @@ export function agreementCsv(tables: readonly MeasuredTable[]): string {
           ...["", "", "", "", "", ""],
         ]),
       );
-      return [...all, ...either];
+      return [...all, ...either].map((row) => [...row, ...cells]);
     }),
   );
 }

@@ -5,6 +5,7 @@ import { agreementCsv, besideCsv } from "./measured-csv.ts";
 import { agreementWords, assignmentWords, scalingWords } from "./measured-words.ts";
 import { againstMeasured } from "./shielding-fit.ts";
 import { waysToSplit } from "./split-ways.ts";
+import { coveredShare, signalName } from "./words.ts";
 
 const plain = (text: string) => text.replaceAll("\u00a0", " ");
 
@@ -65,6 +66,29 @@ describe("files of measured values", () => {
   });
 });
 
+describe("files that leave the page", () => {
+  it("say temperature, level and weights, and error, draws and seed of the uncertainty", () => {
+    const compared = compareMeasured([{ atom: 1, z: 6, average: 30, error: null, measured: 32 }], {
+      shieldings: false,
+      scaling: new Map(),
+      pairs: [],
+      swapped: new Set(),
+    });
+    const table = { quantity: "shift", unit: "ppm", nameOf: () => "C1", ...compared };
+    const facts = {
+      ...{ temperatureK: 298.15, level: "M", weights: "copies" },
+      ...{ sigma: 0.5, draws: 2000, seed: 7 },
+    };
+    for (const text of [besideCsv([table], facts), agreementCsv([table], facts)]) {
+      const [head, row] = text.split("\r\n");
+      expect(head).toMatch(/,temperature \[K\],level,weights,sigma \[kcal\/mol\],draws,seed$/);
+      expect(row).toMatch(/,298\.15,M,copies,0\.5,2000,7$/);
+    }
+    // Without facts, as editions write them: their bytes stay as they were frozen.
+    expect(besideCsv([table]).split("\r\n")[0]).toMatch(/,slope,intercept$/);
+  });
+});
+
 describe("ways to take a group apart", () => {
   /** N0 with two methyls, C1 and C2. */
   const amine = makeGraph(
@@ -86,5 +110,20 @@ describe("ways to take a group apart", () => {
     expect(waysToSplit(amine, [1, 2])).toEqual([{ way: "each", parts: [[1], [2]] }]);
     expect(waysToSplit(amine, [3, 4, 5]).map(({ way }) => way)).toEqual(["each"]);
     expect(waysToSplit(amine, [3])).toEqual([]);
+  });
+});
+
+describe("words of coverage and of signals", () => {
+  it("never read 100.0 % where a value is missing", () => {
+    expect(coveredShare(0.999988)).toBe("above 99.9");
+    expect(coveredShare(0.9994)).toBe("99.9");
+    expect(coveredShare(1)).toBe("100.0");
+  });
+  it("name the atom that carries a hydrogen", () => {
+    const elements = [6, 1, 1, 6, 1];
+    const bonds = [0, 1, 0, 2, 0, 3, 3, 4];
+    expect(signalName([1, 2], elements, bonds)).toBe("H2, H3 (on C1)");
+    expect(signalName([1, 4], elements, bonds)).toBe("H2, H5 (on C1, C4)");
+    expect(signalName([0], elements, bonds)).toBe("C1");
   });
 });

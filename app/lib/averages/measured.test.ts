@@ -2,6 +2,7 @@ import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import {
   areShieldings,
+  asideWords,
   type MeasuredState,
   measuredIn,
   measuredRecord,
@@ -11,6 +12,8 @@ import {
   readPasted,
   saysNothing,
   setBeside,
+  settle,
+  shieldingLike,
   withMeasured,
   writeMeasured,
 } from "./measured.ts";
@@ -182,5 +185,76 @@ describe("measured values in an address", () => {
       ]),
     );
     expect(readPasted("C1 77,3", groups)).toEqual({ values: new Map(), unread: ["C1 77,3"] });
+  });
+});
+
+describe("a measured value keeps the atoms that it was measured for", () => {
+  const whole = [[4], [10, 15]];
+  const apart = [[4], [10], [15]];
+  const entered: MeasuredState = {
+    ...nothingMeasured("shift"),
+    values: new Map([
+      [4, 20],
+      [10, 80.08],
+    ]),
+  };
+  const kept = settle(entered, whole);
+
+  it("is set aside when the group is taken apart, in words, and not compared", () => {
+    expect(kept.of).toEqual(
+      new Map([
+        [4, [4]],
+        [10, [10, 15]],
+      ]),
+    );
+    const split = settle(kept, apart);
+    expect([...split.values]).toEqual([[4, 20]]);
+    expect(split.aside).toEqual([{ atoms: [10, 15], value: 80.08 }]);
+    expect(asideWords(split.aside!, (atom) => `C${atom}`, "ppm")).toContain(
+      "was measured for C10 and C15 together: not compared.",
+    );
+  });
+
+  it("comes back when the group is put together, and the parts' own values go aside", () => {
+    const split = settle(kept, apart);
+    const both = settle({ ...split, values: new Map([...split.values, [10, 79.5], [15, 80.6]]) }, apart);
+    expect([...both.values.keys()].sort((x, y) => x - y)).toEqual([4, 10, 15]);
+    const joined = settle(both, whole);
+    expect(joined.values.get(10)).toBe(80.08);
+    expect(joined.aside).toEqual([
+      { atoms: [10], value: 79.5 },
+      { atoms: [15], value: 80.6 },
+    ]);
+    expect(asideWords(joined.aside!, (atom) => `C${atom}`, "ppm")).toContain("for C10 alone");
+    expect(writeMeasured(settle(joined, apart))).toBe(writeMeasured(both));
+  });
+
+  it("comes back from the address and from what is kept, for either grouping", () => {
+    for (const state of [kept, settle(kept, apart)]) {
+      expect(settle(readMeasured(writeMeasured(state)), whole)).toEqual(kept);
+      expect(settle(measuredState(measuredRecord(state)), whole)).toEqual(kept);
+    }
+    expect(writeMeasured(kept)).toBe("shift~a4:20~a10.15:80.08");
+    expect(saysNothing(measuredRecord(settle(readMeasured("shift~a10.15:80.08"), apart)))).toBe(false);
+  });
+
+  it("of before stands for the signal that begins with its atom", () => {
+    expect(settle(readMeasured("shift~10:80.08"), whole).of?.get(10)).toEqual([10, 15]);
+    expect(measuredRecord(readMeasured("shift~10:80.08"))).not.toHaveProperty("of");
+  });
+});
+
+describe("numbers taken for shifts that fall as the measured ones rise", () => {
+  const nuclei = (averages: readonly number[]) =>
+    setBeside(
+      averages.map((average, k) => ({ atom: k + 1, z: 6, average, error: null, measured: SHIFTS[k]! })),
+      { shieldings: false, scaling: new Map() },
+    );
+  it("look like shieldings, with the slope of the fit", () => {
+    const [like] = shieldingLike(nuclei(SHIELDINGS));
+    expect(like!.z).toBe(6);
+    expect(like!.slope).toBeCloseTo(SCIPY.slope, 12);
+    expect(shieldingLike(nuclei([8, 37, 77, 127]))).toEqual([]);
+    expect(shieldingLike(nuclei(SHIELDINGS.slice(0, 2)))).toEqual([]);
   });
 });

@@ -1,3 +1,4 @@
+import { fixed, withUnit } from "../format.ts";
 import type { MeasuredRecord } from "./averaging.ts";
 import { type Agreement, againstMeasured, fitShieldings, type Line, shiftOf } from "./shielding-fit.ts";
 
@@ -12,6 +13,16 @@ export interface MeasuredState {
   scaling: ReadonlyMap<number, Omit<Line, "n">>;
   /** First atoms (from 1) of the pairs whose two values are exchanged. */
   swapped: ReadonlySet<number>;
+  /** All atoms (from 1) that a value was measured for, by the first; a value without stands for its signal of today. */
+  of?: ReadonlyMap<number, readonly number[]>;
+  /** Values whose atoms are no signal now, because a group was taken apart or put together since. */
+  aside?: readonly SetAside[];
+}
+
+/** A measured value with the atoms (from 1) that it was measured for. */
+export interface SetAside {
+  atoms: readonly number[];
+  value: number;
 }
 
 /** Values, lines and swapped pairs of one quantity. */
@@ -32,6 +43,7 @@ export function readMeasured(text: string): MeasuredState {
   const values = new Map<number, number>();
   const scaling = new Map<number, Omit<Line, "n">>();
   const swapped = new Set<number>();
+  const aside: SetAside[] = [];
   let are: MeasuredState["are"] = null;
   for (const part of parts.slice(0, MOST_MEASURED)) {
     if (part === "shieldings" || part === "shifts") are = part;
@@ -39,19 +51,31 @@ export function readMeasured(text: string): MeasuredState {
     const [a, b] = [numberOf(first), numberOf(second)];
     const z = /^z(\d{1,3})$/.exec(key)?.[1];
     const pair = /^s(\d{1,5})$/.exec(part)?.[1];
+    const known = /^a(\d{1,5}(?:\.\d{1,5})*)$/.exec(key)?.[1];
+    if (known !== undefined && a !== null) aside.push({ atoms: known.split(".").map(Number), value: a });
     if (pair !== undefined) swapped.add(Number(pair));
     if (z !== undefined && a !== null && a !== 0 && b !== null) {
       scaling.set(Number(z), { slope: a, intercept: b });
     } else if (/^\d{1,5}$/.test(key) && a !== null) values.set(Number(key), a);
   }
-  return { quantity: decode(quantity), are, values, scaling, swapped };
+  const state = { quantity: decode(quantity), are, values, scaling, swapped };
+  return aside.length === 0 ? state : { ...state, aside };
 }
 
 /** Writes it; the name of the quantity alone where nothing is measured or typed in. */
-export function writeMeasured({ quantity, are, values, scaling, swapped }: MeasuredState): string {
+export function writeMeasured(state: MeasuredState): string {
+  const { quantity, are, values, scaling, swapped, of, aside = [] } = state;
+  const known = [...values].flatMap(([atom, value]) => {
+    const atoms = of?.get(atom);
+    return atoms === undefined ? [] : [{ atoms, value }];
+  });
   return [
     encode(quantity),
-    ...[...values].sort(([a], [b]) => a - b).map(([atom, value]) => `${atom}:${plain(value)}`),
+    ...[...values]
+      .filter(([atom]) => !of?.has(atom))
+      .sort(([a], [b]) => a - b)
+      .map(([atom, value]) => `${atom}:${plain(value)}`),
+    ...[...known, ...aside].sort(byAtoms).map(({ atoms, value }) => `a${atoms.join(".")}:${plain(value)}`),
     ...[...scaling]
       .sort(([a], [b]) => a - b)
       .map(([z, { slope, intercept }]) => `z${z}:${plain(slope)}:${plain(intercept)}`),
@@ -91,8 +115,77 @@ export function withMeasured(
   return next;
 }
 
+const byAtoms = (a: SetAside, b: SetAside) =>
+  (a.atoms[0] ?? 0) - (b.atoms[0] ?? 0) ||
+  a.atoms.length - b.atoms.length ||
+  (a.atoms[1] ?? 0) - (b.atoms[1] ?? 0);
+
+/**
+ * A state against the signals of today: a value whose atoms are one signal stands by it, one whose atoms are none is set
+ * aside, and comes back when they are one again. A value that does not say its atoms is taken for the signal that begins
+ * with its atom.
+ *
+ * @param groups atoms (from 1) of each signal, the first first
+ * @example settle(stateOf10And15, [[10], [15]]).aside // [{ atoms: [10, 15], value: 80.08 }]
+ */
+export function settle(state: MeasuredState, groups: readonly (readonly number[])[]): MeasuredState {
+  const firsts = new Map(groups.map((atoms) => [atoms[0] ?? 0, atoms]));
+  const isSignal = (atoms: readonly number[]) => firsts.get(atoms[0] ?? 0)?.join() === atoms.join();
+  const values = new Map<number, number>();
+  const of = new Map<number, readonly number[]>();
+  const known: SetAside[] = [...(state.aside ?? [])];
+  for (const [atom, value] of state.values) {
+    const own = state.of?.get(atom);
+    const today = firsts.get(atom);
+    if (own !== undefined) known.push({ atoms: own, value });
+    else {
+      values.set(atom, value);
+      if (today !== undefined) of.set(atom, today);
+    }
+  }
+  const aside: SetAside[] = [];
+  for (const one of known) {
+    const first = one.atoms[0] ?? 0;
+    if (!isSignal(one.atoms)) aside.push(one);
+    else {
+      values.set(first, one.value);
+      of.set(first, one.atoms);
+    }
+  }
+  const { of: _of, aside: _aside, ...rest } = state;
+  return {
+    ...rest,
+    values,
+    ...(of.size === 0 ? {} : { of }),
+    ...(aside.length === 0 ? {} : { aside: aside.sort(byAtoms) }),
+  };
+}
+
+/**
+ * Why values that were set aside take no part.
+ *
+ * @example asideWords([{ atoms: [10, 15], value: 80.08 }], (atom) => `C${atom}`, "ppm")
+ * // "80.08 ppm was measured for C10 and C15 together: not compared."
+ */
+export function asideWords(
+  aside: readonly SetAside[],
+  nameOf: (atom: number) => string,
+  unit: string | null,
+): string {
+  return aside
+    .map(({ atoms, value }) => {
+      const names = atoms.map(nameOf);
+      const last = names.at(-1) ?? "";
+      const who =
+        names.length === 1 ? `${last} alone` : `${names.slice(0, -1).join(", ")} and ${last} together`;
+      return `${withUnit(fixed(value, 2), unit ?? "")} was measured for ${who}: not compared.`;
+    })
+    .join(" ");
+}
+
 /** As it is kept with the ensemble; the same state always gives the same record. */
-export function measuredRecord({ quantity, are, values, scaling, swapped }: MeasuredState): MeasuredRecord {
+export function measuredRecord(state: MeasuredState): MeasuredRecord {
+  const { quantity, are, values, scaling, swapped, of, aside } = state;
   return {
     quantity,
     are,
@@ -101,23 +194,41 @@ export function measuredRecord({ quantity, are, values, scaling, swapped }: Meas
       .sort(([a], [b]) => a - b)
       .map(([z, { slope, intercept }]) => ({ z, slope, intercept })),
     swapped: [...swapped].sort((a, b) => a - b),
+    ...(of === undefined
+      ? {}
+      : {
+          of: [...of]
+            .filter(([atom]) => values.has(atom))
+            .sort(([a], [b]) => a - b)
+            .map(([atom, atoms]): [number, number[]] => [atom, [...atoms]]),
+        }),
+    ...(aside === undefined || aside.length === 0
+      ? {}
+      : { aside: aside.map(({ atoms, value }) => ({ atoms: [...atoms], value })) }),
   };
 }
 
 /** A record as it was kept. */
-export function measuredState({ quantity, are, values, scaling, swapped }: MeasuredRecord): MeasuredState {
+export function measuredState(record: MeasuredRecord): MeasuredState {
+  const { quantity, are, values, scaling, swapped, of, aside } = record;
   return {
     quantity,
     are,
     values: new Map(values),
     scaling: new Map(scaling.map(({ z, slope, intercept }) => [z, { slope, intercept }])),
     swapped: new Set(swapped),
+    ...(of === undefined ? {} : { of: new Map(of) }),
+    ...(aside === undefined ? {} : { aside }),
   };
 }
 
 /** True where nothing is said: such a record is not kept. */
-export function saysNothing({ values, scaling }: Pick<MeasuredRecord, "values" | "scaling">): boolean {
-  return values.length === 0 && scaling.length === 0;
+export function saysNothing({
+  values,
+  scaling,
+  aside = [],
+}: Pick<MeasuredRecord, "values" | "scaling" | "aside">): boolean {
+  return values.length === 0 && scaling.length === 0 && aside.length === 0;
 }
 
 /** Whether the name of a quantity speaks of shieldings. */
@@ -228,6 +339,29 @@ export function setBeside(
       pairs.map(({ measured }) => measured),
     );
     return { z, groups: beside, line, agreement, farthest: pairs[agreement?.maxPlace ?? -1]?.atom ?? null };
+  });
+}
+
+/** Slopes of computed against measured values that speak of shieldings: our own starting values around -1. */
+const SHIELDING_SLOPE = { low: -1.3, high: -0.7 } as const;
+
+/**
+ * Nuclei whose computed values, taken for shifts, fall as the measured shifts rise: most likely they are shieldings.
+ *
+ * @returns the slope a nucleus; none where fewer than three values are measured
+ * @example shieldingLike(nuclei) // [{ z: 6, slope: -1.02 }]
+ */
+export function shieldingLike(nuclei: readonly Nucleus[]): { z: number; slope: number }[] {
+  return nuclei.flatMap(({ z, groups }) => {
+    const known = groups.flatMap(({ average, measured }) =>
+      average === null || measured === null ? [] : [{ average, measured }],
+    );
+    const line = fitShieldings(
+      known.map(({ average }) => average),
+      known.map(({ measured }) => measured),
+    );
+    const { low, high } = SHIELDING_SLOPE;
+    return line !== null && line.slope >= low && line.slope <= high ? [{ z, slope: line.slope }] : [];
   });
 }
 

@@ -14,6 +14,8 @@ it("every number of the table says its temperature, level and weights", () => {
     level: "=M",
     weights: "copies",
     sigma: 0.5,
+    draws: 2000,
+    seed: 7,
     rows: [
       {
         property: { name: "d, long", unit: "Å" },
@@ -26,7 +28,7 @@ it("every number of the table says its temperature, level and weights", () => {
   });
   expect(text).toBe(
     "property,unit,rule,average at 200 K,average at 298.15 K,spread at 298.15 K,uncertainty at 298.15 K," +
-      "covered at 298.15 K,level,weights,sigma [kcal/mol]\r\n" +
-      '"d, long",Å,linear,1,2,1,0.25,1,\'=M,copies,0.5\r\n',
+      "covered at 298.15 K,level,weights,sigma [kcal/mol],draws,seed\r\n" +
+      '"d, long",Å,linear,1,2,1,0.25,1,\'=M,copies,0.5,2000,7\r\n',
   );
 });

@@ -15,6 +15,9 @@ export interface ShownAverages {
   weights: string;
   /** kcal/mol; null without an error of the level. */
   sigma: number | null;
+  /** Of the uncertainty: draws made and the seed they came from; null where none was drawn. */
+  draws: number | null;
+  seed: number;
   rows: readonly {
     property: Pick<PropertyValues, "name" | "unit">;
     rule: string;
@@ -38,7 +41,7 @@ export function shownAveragesCsv(shown: ShownAverages): string {
     ...["property", "unit", "rule"],
     ...temperatures.map((kelvin) => `average at ${formatTemperature(kelvin)} K`),
     ...[`spread${at}`, `uncertainty${at}`, `covered${at}`],
-    ...["level", "weights", "sigma [kcal/mol]"],
+    ...["level", "weights", "sigma [kcal/mol]", "draws", "seed"],
   ];
   const lines = rows.map(({ property, rule, averages, average, error }) =>
     [
@@ -52,6 +55,8 @@ export function shownAveragesCsv(shown: ShownAverages): string {
       textCell(shown.level),
       textCell(shown.weights),
       numberCell(sigma),
+      numberCell(shown.draws),
+      numberCell(shown.draws === null ? null : shown.seed),
     ].join(","),
   );
   return `${[head.join(","), ...lines].join("\r\n")}\r\n`;

@@ -1,5 +1,14 @@
 import { atomName } from "../chem/elements.ts";
-import { capital, fixed, formatPercent, formatTemperature, plural, pluralWord, withUnit } from "../format.ts";
+import {
+  capital,
+  fixed,
+  formatPercent,
+  formatPopulation,
+  formatTemperature,
+  plural,
+  pluralWord,
+  withUnit,
+} from "../format.ts";
 import { turnOf } from "./angle.ts";
 import type { Average } from "./average.ts";
 import type { PropertyValues } from "./property-set.ts";
@@ -103,6 +112,41 @@ function moverWords({ property, average, mover }: Told): string | null {
   return `${mover.name} moves that figure most: ${share}. Without it: ${valueWords(property, mover.without)}.`;
 }
 
+/**
+ * Share of the population that has a value, in per cent: what is not all of it never reads as 100.0.
+ *
+ * @example coveredShare(0.999988) // "above 99.9"
+ */
+export function coveredShare(covered: number): string {
+  const figure = formatPopulation(covered);
+  return covered < 1 && figure === formatPopulation(1) ? `above ${fixed(99.9, 1)}` : figure;
+}
+
+/**
+ * Atoms of a signal; hydrogens with the atom that carries them.
+ *
+ * @param atoms from 0
+ * @param bonds pairs of atoms from 0, one after the other
+ * @example signalName([10], elements, bonds) // "H11 (on C2)"
+ */
+export function signalName(
+  atoms: readonly number[],
+  elements: ArrayLike<number>,
+  bonds: ArrayLike<number>,
+): string {
+  const names = atoms.map((atom) => atomName(elements, atom)).join(", ");
+  const members = new Set(atoms);
+  if (!atoms.every((atom) => elements[atom] === 1)) return names;
+  const carriers = new Set<number>();
+  for (let k = 0; k + 1 < bonds.length; k += 2) {
+    const [a = -1, b = -1] = [bonds[k], bonds[k + 1]];
+    if (members.has(a)) carriers.add(b);
+    if (members.has(b)) carriers.add(a);
+  }
+  const on = [...carriers].sort((a, b) => a - b).map((atom) => atomName(elements, atom));
+  return on.length === 0 ? names : `${names} (on ${on.join(", ")})`;
+}
+
 function coverageWords(all: readonly { property: PropertyValues; average: Average }[]): string {
   const scalars = all.filter(({ property }) => property.quantity === null).length;
   const signals = new Map<string, number>();
@@ -126,7 +170,7 @@ function coverageWords(all: readonly { property: PropertyValues; average: Averag
       .slice(0, 3)
       .map(
         ({ property, average }) =>
-          `${property.name} covers ${formatPercent(average.covered, 1)} of the population.`,
+          `${property.name} covers ${withUnit(coveredShare(average.covered), "%")} of the population.`,
       ),
     ...refused
       .slice(0, 3)

@@ -1,6 +1,6 @@
 import { assignmentPairs, compareMeasured, type PairAssignment } from "../averages/assignment.ts";
 import type { MeasuredRecord } from "../averages/averaging.ts";
-import { areShieldings, measuredState, type Nucleus } from "../averages/measured.ts";
+import { areShieldings, measuredState, type Nucleus, type SetAside, settle } from "../averages/measured.ts";
 import type { MeasuredTable } from "../averages/measured-csv.ts";
 import type { PropertyValues } from "../averages/property-set.ts";
 import { atomName, symbolOf } from "../chem/elements.ts";
@@ -30,9 +30,13 @@ export function measuredSection(
     isotopes ? Uint16Array.from(isotopes) : undefined,
   );
   const made = records.map(({ quantity, ...stated }): EditionMeasured => {
-    const state = measuredState({ quantity, ...stated });
     const own = firstOfGroups(properties, quantity);
     const groups = own.map(({ atoms }) => atoms);
+    // Values measured for atoms that are no signal of this edition take no part; what was stated stays as it was.
+    const state = settle(
+      measuredState({ quantity, ...stated }),
+      groups.map((atoms) => atoms.map((atom) => atom + 1)),
+    );
     const unit = own[0]?.unit ?? null;
     const first = (place: number) => (groups[place]?.[0] ?? 0) + 1;
     const shieldings = areShieldings(state, unit);
@@ -120,6 +124,12 @@ function pairOf({ atoms, z, swapped, entered, exchanged }: PairAssignment): Edit
 /** Names of the atoms (from 1) of a group. */
 export const atomNames = (elements: readonly number[], atoms: readonly number[]) =>
   atoms.map((atom) => atomName(elements, atom - 1)).join(", ");
+
+/** Values that were stated for atoms that are no signal of the edition. */
+export function setAsideIn({ quantity, stated, nuclei }: EditionMeasured): readonly SetAside[] {
+  const groups = nuclei.flatMap((nucleus) => nucleus.groups.map(({ atoms }) => atoms));
+  return settle(measuredState({ quantity, ...stated }), groups).aside ?? [];
+}
 
 /** The same as the files take it. */
 export function measuredTables({ measured, ensemble }: EditionContent): MeasuredTable[] {

@@ -30,6 +30,7 @@ function readRecord(json: string): MeasuredRecord {
   const record = read.data;
   const numbers = [
     ...record.values.map(([, value]) => value),
+    ...(record.aside ?? []).map(({ value }) => value),
     ...record.scaling.flatMap(({ slope, intercept }) => [slope, intercept]),
   ];
   if (numbers.some((value) => !Number.isFinite(value) || Math.abs(value) >= 1e6)) {
@@ -37,7 +38,10 @@ function readRecord(json: string): MeasuredRecord {
   }
   if (record.scaling.some(({ slope }) => slope === 0))
     throw refused("A slope of 0 makes every shielding one shift.");
-  if (record.values.length + record.scaling.length + record.swapped.length > MOST_MEASURED) {
+  if (
+    record.values.length + record.scaling.length + record.swapped.length + (record.aside ?? []).length >
+    MOST_MEASURED
+  ) {
     throw refused(`At most ${MOST_MEASURED} values can be kept for one quantity.`);
   }
   const once = (keys: readonly number[]) => new Set(keys).size === keys.length;
@@ -65,7 +69,13 @@ async function atomsOf(tx: Transaction, ensembleId: string, record: MeasuredReco
     )
     .limit(1);
   if (column === undefined) throw refused(`This ensemble has no per-atom values of ${record.quantity}.`);
-  const far = [...record.values.map(([at]) => at), ...record.swapped].find((at) => at > row.atoms);
+  const stated = [
+    ...record.values.map(([at]) => at),
+    ...record.swapped,
+    ...(record.of ?? []).flatMap(([, atoms]) => atoms),
+    ...(record.aside ?? []).flatMap(({ atoms }) => atoms),
+  ];
+  const far = stated.find((at) => at > row.atoms);
   if (far !== undefined) throw refused(`There is no atom ${far}: the molecule has ${row.atoms}.`);
   const elements = row.elements.subarray(0, row.atoms);
   return { unit: column.unit, nameOf: (atom: number) => atomName(elements, atom - 1) };
@@ -79,9 +89,15 @@ function changesBetween(
   after: MeasuredRecord,
   nameOf: (atom: number) => string,
 ): { what: string; before: string | null; after: string | null }[] {
+  // A record of before the atoms were kept with each value is named as the one that follows it.
+  const later = new Map(after.of ?? []);
+  const named = (atoms: readonly number[]) => atoms.map(nameOf).join(", ");
+  const signal = (record: MeasuredRecord | undefined, at: number) =>
+    named(new Map(record?.of ?? []).get(at) ?? later.get(at) ?? [at]);
   const said = (record: MeasuredRecord | undefined) =>
     new Map<string, string>([
-      ...(record?.values ?? []).map(([at, value]) => [nameOf(at), String(value)] as const),
+      ...(record?.values ?? []).map(([at, value]) => [signal(record, at), String(value)] as const),
+      ...(record?.aside ?? []).map(({ atoms, value }) => [named(atoms), String(value)] as const),
       ...(record?.scaling ?? []).map(
         ({ z, slope, intercept }) =>
           [`line of element ${z}`, `slope ${slope}, intercept ${intercept}`] as const,
