@@ -1,6 +1,9 @@
 import { type ReactNode, useMemo, useRef, useState } from "react";
 import { Checkbox } from "~/components/ui/checkbox";
 import { DepthKey } from "~/components/ui/depth-key";
+import { firstUnbonded } from "~/lib/averages/observable";
+import { measureLabel } from "~/lib/measure/measure";
+import { makeGraph } from "~/lib/structure";
 import type { HydrogenMode, ViewMode } from "~/lib/url-state";
 import type { Ghost } from "~/lib/view/ghost";
 import { pickText, viewMarks } from "~/lib/view/marks";
@@ -95,6 +98,13 @@ export function Viewer(props: ViewerProps) {
   };
   const lead = scene.strong[0];
   const own = lead && picked.length > 0 ? [pickText(scene, lead, picked)] : [];
+  const open = useMemo(
+    () =>
+      picked.length === 4 && props.bonds.length > 0
+        ? firstUnbonded(makeGraph(Uint8Array.from(elements), Int32Array.from(props.bonds)), picked)
+        : null,
+    [elements, props.bonds, picked],
+  );
   const texts = measures.length > 0 ? measures.map(({ label, text }) => `${label} ${text}`) : own;
   return (
     // On paper an empty box says nothing: it is left out where no structure has come yet.
@@ -118,7 +128,7 @@ export function Viewer(props: ViewerProps) {
       <ViewOptions {...props} list={props.children} numbers={numbers} onNumbers={() => setNumbers(!numbers)}>
         <p role="status" className="text-xs text-ink-3">
           {[
-            pickWords(picked, texts),
+            pickWords(picked, texts, open === null ? null : measureLabel(elements, open)),
             failureWords(canvas.failure),
             failedToSave ? "The picture could not be made: take a smaller view and try again." : "",
           ]

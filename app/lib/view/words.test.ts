@@ -66,6 +66,9 @@ describe("pickWords", () => {
     expect(pickWords([2, 3, 4, 5], ["C3\u2013C4\u2013N5\u2013S6 \u2212154°"])).toBe(
       "Torsion C3\u2013C4\u2013N5\u2013S6 \u2212154°.",
     );
+    expect(pickWords([2, 3, 4, 5], ["C3\u2013C4\u2013N5\u2013S6 \u2212154°"], "C4\u2013N5")).toBe(
+      "C3\u2013C4\u2013N5\u2013S6 \u2212154°. C4\u2013N5 not bonded: an angle between planes, no torsion of a bond.",
+    );
     expect(pickWords([2], ["C3"])).toBe("C3 picked: pick a second one for a distance.");
     expect(pickWords([], [])).toBe("Click two, three or four atoms to measure.");
   });

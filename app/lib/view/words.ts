@@ -35,9 +35,20 @@ function figureWords({ name, frame, population, held, outside }: Figure): string
   return facts.length > 0 ? `${name} (${facts.join(", ")})` : name;
 }
 
-/** The line below the picture: what is measured, or what to do. */
-export function pickWords(picked: readonly number[], texts: readonly string[]): string {
+/**
+ * The line below the picture: what is measured, or what to do.
+ *
+ * @param unbonded of four picked atoms the first two neighbours that no bond joins ("C2–O3"); null where they are a chain
+ */
+export function pickWords(
+  picked: readonly number[],
+  texts: readonly string[],
+  unbonded: string | null = null,
+): string {
   const kind = measureKind(picked);
+  if (kind === "torsion" && unbonded !== null && texts.length > 0) {
+    return `${texts.join("; ")}. ${unbonded} not bonded: an angle between planes, no torsion of a bond.`;
+  }
   if (kind !== null && texts.length > 0) {
     const noun = kind === "distance" ? "Distance" : kind === "angle" ? "Angle" : "Torsion";
     return `${noun} ${texts.join("; ")}.`;
