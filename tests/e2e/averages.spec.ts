@@ -124,7 +124,8 @@ test("without a property the section says what it needs", async ({ page }) => {
 
 test("trust names what is yours to settle, and follows the error", async ({ page }) => {
   await takeIn(page, "trust");
-  await expect(page.getByText("c1 and c2 cannot be told apart.")).toBeVisible();
+  // Ten thousand draws in a thread of the browser, behind the sift.
+  await expect(page.getByText("c1 and c2 cannot be told apart.")).toBeVisible({ timeout: 30_000 });
   await expect(page.getByText("Two or so shapes are probably missing.")).toBeVisible();
   await expect(page.getByText("hold between 43", { exact: false })).toBeVisible();
   await page.getByLabel("Level error, ±").fill("0.02");
