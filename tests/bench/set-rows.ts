@@ -1,4 +1,5 @@
-import { execFileSync } from "node:child_process";
+import { execFileSync, spawnSync } from "node:child_process";
+import { readFileSync } from "node:fs";
 import path from "node:path";
 import { countAgainstTolerance } from "../../app/lib/sift/count-against-tolerance.ts";
 import { kcalPer } from "../../app/lib/units.ts";
@@ -14,6 +15,16 @@ export interface Yardstick {
   kabsch: number;
 }
 
+/**
+ * Words of a command that hold a process to one core, where the system has them: the figures are for one. Left alone the
+ * engine compiles and collects on the others meanwhile, and two threads that share a core's parts each take longer.
+ */
+function onOneCore(): string[] {
+  const core = /^Cpus_allowed_list:\s*(\d+)/m.exec(readFileSync("/proc/self/status", "utf8"))?.[1];
+  const words = ["taskset", "-c", core ?? "0"];
+  return spawnSync("taskset", ["-c", core ?? "0", "true"]).status === 0 ? words : [];
+}
+
 /** Medians over several processes of one kind. */
 function processes(
   report: Report,
@@ -23,8 +34,9 @@ function processes(
 ) {
   const script = path.join(report.settings.scratch, "text-to-set.mjs");
   const flags = [script, mode, file, options.tolerance ?? "none", String(options.sifts ?? 1)];
+  const [command = process.execPath, ...words] = [...onOneCore(), process.execPath, ...flags];
   const answers = Array.from({ length: options.runs }, (): TextToSetAnswer => {
-    return JSON.parse(execFileSync(process.execPath, flags).toString());
+    return JSON.parse(execFileSync(command, words).toString());
   });
   const of = (pick: (answer: TextToSetAnswer) => number) => median(answers.map(pick));
   return { first: answers[0]!, of };
@@ -54,7 +66,7 @@ export function symmetricSetRows(report: Report, made: Made, base: Molecule, yar
       aim: whole[1],
       now: cpu,
       ratio: (slow + made.bytes / 1e6 / yardstick.reading) / cpu,
-      note: `process start included; wall ${of((answer) => answer.wall).toFixed(2)} s; ${first.kept} kept of ${first.accepted}; yardstick scaled up from a pair`,
+      note: `process start included, held to one core; wall ${of((answer) => answer.wall).toFixed(2)} s; ${first.kept} kept of ${first.accepted}; yardstick scaled up from a pair`,
     });
     report.add({
       name: "its sift alone",
