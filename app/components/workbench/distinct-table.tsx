@@ -342,7 +342,7 @@ function Opened({ onHeight, children }: { onHeight: (height: number) => void; ch
   }, []);
   return (
     <tr ref={row} className="border-b border-rule bg-sunk">
-      <td colSpan={6} className="px-3 py-4 sm:pr-4 sm:pl-9">
+      <td colSpan={6} className="px-3 py-4 sm:pr-3 sm:pl-3 xl:pr-4 xl:pl-9">
         {children}
       </td>
     </tr>
