@@ -99,7 +99,7 @@ export function WindowTable({
         </TextLink>
         {ensemble.role === "guest" ? null : (
           <>
-            {" "}
+            <span className="print:hidden"> · </span>
             <TextLink
               className="print:hidden"
               to={`${href("/teams/:team/windows", { team: ensemble.team.id })}?${new URLSearchParams({ series: ensemble.series.id, level: level.name, ref: reference.name })}`}
