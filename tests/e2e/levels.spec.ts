@@ -225,7 +225,7 @@ test.describe("levels", () => {
     await expect(page.getByText("hardly agree on the order", { exact: false })).toBeVisible();
     await expectMeasures(page, { "Kendall correlation": "0.200", "Population overlap": "36.4" });
     // Three levels and more stand against each other, and a cell opens its comparison.
-    await page.getByRole("radio", { name: "Kendall", exact: true }).check();
+    await page.getByRole("radio", { name: "Kendall", exact: true }).click();
     await page.getByRole("button", { name: /Kendall of HF against CCSD\(T\): 0\.27/ }).click();
     await expect(page.getByText("HF puts the lowest conformer of CCSD(T)", { exact: false })).toBeVisible();
   });

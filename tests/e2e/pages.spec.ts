@@ -47,7 +47,7 @@ test.describe("the browser's Back", () => {
     await rows(page).nth(1).click();
     await expect.poll(() => search().get("sel")).toMatch(/^\d+$/);
     const selected = search().get("sel");
-    await page.getByRole("radio", { name: "Side by side", exact: true }).check();
+    await page.getByRole("radio", { name: "Side by side", exact: true }).click();
     await expect.poll(() => search().get("m")).toBe("side");
     await page.getByLabel("Atoms to measure").fill("1 2 4 5");
     await page.keyboard.press("Enter");
