@@ -1,5 +1,5 @@
 import { Download } from "lucide-react";
-import { Fragment, useMemo, useState } from "react";
+import { Fragment, useState } from "react";
 import { saveText } from "~/components/charts/export-figure";
 import { Button } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
@@ -10,13 +10,12 @@ import { digitsFor, signalName } from "~/lib/averages/words";
 import { ABSENT, fixed, formatDate, formatTemperature, plural, signed } from "~/lib/format";
 import { toCsv } from "~/lib/workbench/tsv";
 import { AtomDrawing } from "./atom-drawing";
-import { ContributionChart } from "./contribution-chart";
 import { MeasuredBlock } from "./measured-block";
+import { PropertyFigures } from "./property-figures";
 import { anchorOf } from "./property-table";
 import { JoinGroup, SplitGroup } from "./split-group";
 import { type Averaged, type AveragedProperty, contributionsTo } from "./use-averages";
 import type { WeighedConformers } from "./use-weighed";
-import { ValueDistribution } from "./value-distribution";
 
 /** A per-atom quantity: equivalent atoms share a row, beside the drawing that shows which they are. */
 export function AtomTable({
@@ -42,12 +41,13 @@ export function AtomTable({
   const lowest = result?.kept[0]?.frame;
   const positions = lowest === undefined ? null : (coordinates.positions.get(lowest) ?? null);
   const rows = list.map((one) => {
-    const { mover } = contributionsTo(one, weighed, averaged.populations, temperatureK);
+    const { list: contributions, mover } = contributionsTo(one, weighed, averaged.populations, temperatureK);
     const digits = Math.max(2, digitsFor(unit, one.average.value));
     const members = one.property.atoms ?? [];
     const split = splitOf(view.said, members);
     return {
       one,
+      contributions,
       mover,
       digits,
       members,
@@ -151,7 +151,7 @@ export function AtomTable({
             </tr>
           </thead>
           <tbody>
-            {rows.map(({ one, mover, digits, name, members, split }) => (
+            {rows.map(({ one, contributions, mover, digits, name, members, split }) => (
               <Fragment key={one.property.id}>
                 <Tr selected={one.property.id === chosen}>
                   <Td wrap>
@@ -220,10 +220,12 @@ export function AtomTable({
                           : `; most moved by ${mover.name}, ${signed(mover.change, digits)} without it`}
                         .
                       </p>
-                      <AtomDetail
+                      <PropertyFigures
                         one={{ ...one, property: { ...one.property, name: `${quantity} of ${name}` } }}
                         averaged={averaged}
                         weighed={weighed}
+                        list={contributions}
+                        className="mt-3"
                       />
                     </td>
                   </tr>
@@ -245,41 +247,6 @@ export function AtomTable({
         }}
       />
     </section>
-  );
-}
-
-/** What makes the average of one group of atoms, and where the shapes lie. */
-function AtomDetail({
-  one,
-  averaged,
-  weighed,
-}: {
-  one: AveragedProperty;
-  averaged: Averaged;
-  weighed: WeighedConformers;
-}) {
-  const { temperatureK, selected, select, rows } = useWorkbench();
-  const chosenFrames = useMemo(() => new Set(selected), [selected]);
-  const order = useMemo(() => rows.map((row) => row.frame), [rows]);
-  const { list } = contributionsTo(one, weighed, averaged.populations, temperatureK);
-  return (
-    <div className="mt-3 grid gap-x-10 gap-y-8">
-      <ContributionChart
-        averaged={one}
-        list={list}
-        weighed={weighed}
-        selected={chosenFrames}
-        onChoose={(frame) => select(frame, "only", order)}
-      />
-      <ValueDistribution
-        averaged={one}
-        weighed={weighed}
-        populations={averaged.populations}
-        onChoose={(frame, keys) =>
-          select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order)
-        }
-      />
-    </div>
   );
 }
 

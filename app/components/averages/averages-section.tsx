@@ -15,14 +15,13 @@ import { averagesFinding, propertyName } from "~/lib/averages/words";
 import { plural } from "~/lib/format";
 import { AtomTable } from "./atom-table";
 import { AveragesSettings } from "./averages-settings";
-import { ContributionChart } from "./contribution-chart";
 import { PickColumn } from "./pick-column";
+import { PropertyFigures } from "./property-figures";
 import { PropertyTable } from "./property-table";
 import { RuleCard } from "./rule-card";
 import { type Averaged, type AveragedProperty, contributionsTo, useAverages } from "./use-averages";
 import { useAveragesState } from "./use-averages-state";
 import { useLevelError, useWeighed, type WeighedConformers } from "./use-weighed";
-import { ValueDistribution } from "./value-distribution";
 
 /** What the flask sees: every property averaged by its own rule, with what makes and what moves it. */
 export function AveragesSection({ view }: { view: AveragesView }) {
@@ -111,11 +110,9 @@ function Filled({
   error: ReturnType<typeof useLevelError>;
   averaged: Averaged;
 }) {
-  const { temperatureK, state, sift, selected, select, rows, ensemble } = useWorkbench();
+  const { temperatureK, state, sift, ensemble } = useWorkbench();
   const [{ property: wanted }, changeAverages] = useAveragesState();
   const shown = useShown(averaged, weighed, wanted, temperatureK);
-  const chosenFrames = useMemo(() => new Set(selected), [selected]);
-  const order = useMemo(() => rows.map((row) => row.frame), [rows]);
   const perAtom = useMemo(() => atomGroups(averaged.properties), [averaged.properties]);
   const mirrorMerged = sift?.recipe.mirror === "merge" && sift.recipe.chirality === "achiral";
   const csv = csvAddress(view.siftId ?? "", temperatureK, state.weights, error.sigma, weighed.level.id);
@@ -178,23 +175,13 @@ function Filled({
       ) : null}
       {one.property.quantity === null ? (
         <>
-          <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
-            <ContributionChart
-              averaged={one}
-              list={contributions.list}
-              weighed={weighed}
-              selected={chosenFrames}
-              onChoose={(frame) => select(frame, "only", order)}
-            />
-            <ValueDistribution
-              averaged={one}
-              weighed={weighed}
-              populations={averaged.populations}
-              onChoose={(frame, keys) =>
-                select(frame, keys.shiftKey ? "extend" : keys.ctrlKey || keys.metaKey ? "add" : "only", order)
-              }
-            />
-          </div>
+          <PropertyFigures
+            one={one}
+            averaged={averaged}
+            weighed={weighed}
+            list={contributions.list}
+            className="mt-9 xl:grid-cols-2"
+          />
           {ensemble.mayCompute ? (
             <RuleCard
               key={`${one.property.id}-${one.property.rule}`}

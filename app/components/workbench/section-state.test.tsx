@@ -1,38 +1,11 @@
 import { renderToString } from "react-dom/server";
 import { MemoryRouter } from "react-router";
 import { describe, expect, it } from "vitest";
-import type { EnsembleView, SiftView } from "~/lib/views";
+import type { SiftView } from "~/lib/views";
+import { pentaneView } from "../../../tests/factories/ensemble-view.ts";
 import { SectionState } from "./section-state";
 import { WorkbenchProvider } from "./workbench-context";
 
-const ensemble: EnsembleView = {
-  id: "bbbbbbbbbbbbbbbb",
-  name: "Pentane",
-  formula: "C5H12",
-  atoms: 17,
-  frames: 400,
-  accepted: 397,
-  remarked: 5,
-  held: 3,
-  openQuestions: 0,
-  properties: 0,
-  maybeLevels: [],
-  torsions: [],
-  elements: [],
-  bonds: [],
-  bondTable: null,
-  levels: [],
-  files: [],
-  chirality: "achiral",
-  chiralityNote: "",
-  example: false,
-  role: "analyst",
-  mayCompute: true,
-  team: { id: "cccccccccccccccc", name: "Estuary" },
-  series: { id: "dddddddddddddddd", name: "Alkanes" },
-  createdAt: "2026-12-01T12:00:00Z",
-  changedAt: "2026-12-01T12:00:00Z",
-};
 const cancelled: SiftView = {
   id: "eeeeeeeeeeeeeeee",
   status: "cancelled",
@@ -61,7 +34,7 @@ function shown(sift: SiftView, lastSet: string | null, asked?: { id: string | nu
     <MemoryRouter
       initialEntries={["/ensembles/bbbbbbbbbbbbbbbb/populations?v=1&sift=eeeeeeeeeeeeeeee&T=310"]}
     >
-      <WorkbenchProvider ensemble={ensemble} sift={sift} lastSet={lastSet} first={1} section="populations">
+      <WorkbenchProvider ensemble={pentaneView} sift={sift} lastSet={lastSet} first={1} section="populations">
         <SectionState asked={asked} />
       </WorkbenchProvider>
     </MemoryRouter>,

@@ -28,6 +28,13 @@ export interface KnownUnit {
   energy: EnergyUnit | null;
 }
 
+/** The ways in which an energy per mole and kelvin is written. */
+function entropy(energy: "cal" | "J"): Record<string, readonly [string, UnitFamily]> {
+  const written = energy.toLowerCase();
+  const unit = [`${energy}/(mol K)`, "entropy"] as const;
+  return { [`${written}/mol/k`]: unit, [`${written}/(molk)`]: unit, [`${written}mol-1k-1`]: unit };
+}
+
 /** Spelling in lower case without blanks, dots and carets, and the unit. Those whose case counts stand below. */
 const SPELLINGS: Readonly<Record<string, readonly [string, UnitFamily]>> = {
   å: ["Å", "length"],
@@ -69,12 +76,8 @@ const SPELLINGS: Readonly<Record<string, readonly [string, UnitFamily]>> = {
   fs: ["fs", "time"],
   ns: ["ns", "time"],
   s: ["s", "time"],
-  "cal/mol/k": ["cal/(mol K)", "entropy"],
-  "cal/(molk)": ["cal/(mol K)", "entropy"],
-  "calmol-1k-1": ["cal/(mol K)", "entropy"],
-  "j/mol/k": ["J/(mol K)", "entropy"],
-  "j/(molk)": ["J/(mol K)", "entropy"],
-  "jmol-1k-1": ["J/(mol K)", "entropy"],
+  ...entropy("cal"),
+  ...entropy("J"),
   "%": ["%", "share"],
   e: ["e", "charge"],
   "1": ["", "number"],

@@ -1,5 +1,6 @@
 import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
+import { pentaneView as ensemble } from "../../../tests/factories/ensemble-view.ts";
 import type { IntakeMessage } from "../intake/report.ts";
 import type { SiftRecipe } from "../recipe/recipe.ts";
 import type { KeptConformer, SiftResult } from "../recipe/result.ts";
@@ -92,34 +93,6 @@ const result: SiftResult = {
   withoutEnergy: [10, 11],
   pairsExamined: 866,
   seconds: 0.104,
-};
-const ensemble: EnsembleView = {
-  id: "bbbbbbbbbbbbbbbb",
-  name: "Pentane",
-  formula: "C5H12",
-  atoms: 17,
-  frames: 400,
-  accepted: 397,
-  remarked: 5,
-  held: 3,
-  openQuestions: 0,
-  properties: 0,
-  maybeLevels: [],
-  torsions: [],
-  chirality: "achiral",
-  chiralityNote: "",
-  example: false,
-  team: { id: "cccccccccccccccc", name: "Estuary" },
-  series: { id: "dddddddddddddddd", name: "Alkanes" },
-  elements: [],
-  bonds: [],
-  bondTable: null,
-  levels: [],
-  files: [],
-  createdAt: "2026-12-01T12:00:00Z",
-  changedAt: "2026-12-01T12:00:00Z",
-  role: "analyst",
-  mayCompute: true,
 };
 
 describe("cumulative population", () => {

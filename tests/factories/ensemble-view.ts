@@ -1,0 +1,31 @@
+import type { EnsembleView } from "../../app/lib/views.ts";
+
+/** An ensemble as a page gets it: pentane, 397 of 400 frames accepted, seen by an analyst. */
+export const pentaneView: EnsembleView = {
+  id: "bbbbbbbbbbbbbbbb",
+  name: "Pentane",
+  formula: "C5H12",
+  atoms: 17,
+  frames: 400,
+  accepted: 397,
+  remarked: 5,
+  held: 3,
+  openQuestions: 0,
+  properties: 0,
+  maybeLevels: [],
+  torsions: [],
+  elements: [],
+  bonds: [],
+  bondTable: null,
+  levels: [],
+  files: [],
+  chirality: "achiral",
+  chiralityNote: "",
+  example: false,
+  role: "analyst",
+  mayCompute: true,
+  team: { id: "cccccccccccccccc", name: "Estuary" },
+  series: { id: "dddddddddddddddd", name: "Alkanes" },
+  createdAt: "2026-12-01T12:00:00Z",
+  changedAt: "2026-12-01T12:00:00Z",
+};
