@@ -235,14 +235,12 @@ describe("sifts", () => {
     expect((await call(`/api/v1/sifts/${sift.id}?wait=-1`, { token })).status).toBe(422);
   });
 
-  it("without energies take no tolerance for them", async () => {
+  it("without energies say that a tolerance for them is not used", async () => {
     const taken = await takenIn(token, file2("order", ["-1.55", "-1.45"]), fields);
-    const refused = await post(token, `/ensembles/${taken.id}/sifts`, { level: null, energyTolerance: 0.3 });
-    expect(refused.status).toBe(422);
-    expect((await refused.json()).errors).toMatchObject([{ field: "energyTolerance" }]);
-    const asked = await post(token, `/ensembles/${taken.id}/sifts`, { level: null, energyTolerance: null });
+    const asked = await post(token, `/ensembles/${taken.id}/sifts`, { level: null, energyTolerance: 0.3 });
     expect(asked.status).toBe(202);
-    const { id } = await asked.json();
+    const { id, warnings } = await asked.json();
+    expect(warnings).toMatchObject([{ message: expect.stringContaining("energyTolerance 0.3 is not used") }]);
     expect((await get(`/sifts/${id}?wait=60`)).recipe.energyTolerance).toBeNull();
     const same = await post(token, `/ensembles/${taken.id}/sifts`, { level: null });
     expect(await same.json()).toMatchObject({ id, warnings: [] });

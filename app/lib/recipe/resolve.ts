@@ -16,8 +16,8 @@ export interface EnsembleFacts {
 /**
  * The complete recipe of a request: every default and `auto` resolved. Requests that mean the same give the same recipe.
  *
- * @throws DomainError invalid, with the field at fault, for an unknown level, an energy window or tolerance without a
- *   level, and mirror images merged in a molecule that counts as chiral
+ * @throws DomainError invalid, with the field at fault, for an unknown level, an energy window without a level, and
+ *   mirror images merged in a molecule that counts as chiral
  * @example resolveRecipe({ level: "MMFF94" }, { levels: [{ id: "a1", name: "MMFF94" }], chirality: "achiral" }).mirror // "merge"
  */
 export function resolveRecipe(request: SiftRequest, facts: EnsembleFacts): SiftRecipe {
@@ -27,13 +27,6 @@ export function resolveRecipe(request: SiftRequest, facts: EnsembleFacts): SiftR
     throw refused(
       "window",
       `An energy window of ${window} kcal/mol needs a level: choose one, or leave the window out.`,
-    );
-  }
-  const tolerance = request.energyTolerance ?? null;
-  if (level === null && tolerance !== null) {
-    throw refused(
-      "energyTolerance",
-      `An energy tolerance of ${tolerance} kcal/mol needs a level: without one there are no energies to compare. Choose a level, or leave the tolerance out.`,
     );
   }
   const found = facts.chirality === "achiral" ? "achiral" : "chiral";
