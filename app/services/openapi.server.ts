@@ -183,10 +183,7 @@ const columnCalls = {
       requestBody: columnsBody,
       responses: {
         "201": json(api.columnsAnswerSchema, "The columns, with what is to be said of the file"),
-        "200": json(
-          z.union([api.columnsAnswerSchema, api.columnsPreviewSchema]),
-          "The same file with the same answers came before: its columns. With preview=true: what would be kept",
-        ),
+        "200": json(api.columnsPreviewSchema, "With preview=true: what would be kept"),
         "409": problem("A name is taken; replace=true puts the new numbers in its place"),
         "413": problem("More bytes or values than the limit"),
         "415": problem("No multipart/form-data"),

@@ -78,7 +78,9 @@ function Shell() {
     <>
       <p>
         Every call is safe to repeat: the same bytes with the same answers are the same ensemble, the same
-        recipe on the same accepted frames is the same sift. A job that was cut off is simply run again.
+        recipe on the same accepted frames is the same sift. Columns whose names are in use are refused (409);
+        with <code>replace=true</code> the same table again changes nothing. A job that was cut off is simply
+        run again.
       </p>
       <Listing label="push-ensembles.sh" text={push} />
       <p>

@@ -10,7 +10,7 @@ export const action = answerCall({
     const form = openForm({ body: request.body, contentType: request.headers.get("content-type") });
     const added = await addColumns({ actor, ensembleId, form });
     if (added.kind === "preview") return json(added.preview);
-    return json({ columns: added.columns, messages: added.messages }, { status: added.made ? 201 : 200 });
+    return json({ columns: added.columns, messages: added.messages }, { status: 201 });
   },
 });
 export const loader = action;

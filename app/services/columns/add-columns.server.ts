@@ -39,13 +39,7 @@ export interface ListedColumn {
 }
 
 export type AddedColumns =
-  | {
-      kind: "stored";
-      columns: ListedColumn[];
-      messages: IntakeMessage[];
-      /** False where the same file with the same answers had made them before. */
-      made: boolean;
-    }
+  | { kind: "stored"; columns: ListedColumn[]; messages: IntakeMessage[] }
   | { kind: "preview"; preview: ColumnsPreview };
 
 /** What the file would become, by what it is. */
@@ -145,9 +139,10 @@ async function storeAll(tx: Transaction, at: At, file: ReceivedFile, plan: FileP
       "Frames were added while the file was read. Nothing was stored; send it again.",
     );
   }
+  await refuseTaken(tx, at.ensembleId, plan, file.fields);
+  // A replacement that is sent again leaves what it made: no second entry, no sift of before.
   const standing = await standingColumns(tx, at.ensembleId, file.sha256, plan.columns);
   if (standing !== null) return { ids: standing, made: false };
-  await refuseTaken(tx, at.ensembleId, plan, file.fields);
   const [sourceId] = await file.store.publish(tx);
   const stored: { id: string; name: string; replaced: boolean }[] = [];
   for (const { column: _, header: __, why: ___, ...column } of plan.columns) {
@@ -194,7 +189,7 @@ export async function listColumns(ensembleId: string, ids: readonly string[]): P
 /**
  * Adds columns to an ensemble from a table or a second structure file: the file is kept, read with what was stated beside
  * it, matched with the frames, and either all of its columns are there or none. What is open is a question in a preview
- * and a refusal otherwise. Sent again with the same answers it changes nothing and gives the same columns.
+ * and a refusal otherwise. A name in use is refused; with `replace` a file that is sent again changes nothing more.
  *
  * @throws DomainError invalid (422) for what is open or cannot be read, conflict (409) for names that are taken
  */
@@ -229,7 +224,7 @@ export async function addColumns(options: {
       throw new DomainError("conflict", "The name is taken", message);
     });
     if (made) await siftAfterLevels(at, ids);
-    return { kind: "stored", columns: await listColumns(at.ensembleId, ids), messages: plan.messages, made };
+    return { kind: "stored", columns: await listColumns(at.ensembleId, ids), messages: plan.messages };
   } finally {
     // What was published answers for its checksum and stays.
     await file.store.discard().catch((error) => log.warn({ err: error }, "file not taken back"));

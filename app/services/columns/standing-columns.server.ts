@@ -18,7 +18,7 @@ const DECIDED = [
 
 /**
  * Columns that storing these would leave as they are: each stands under its name, from the same bytes, with the same
- * numbers and the same answers. So a job that is run again finds what it made.
+ * numbers and the same answers. So a job that replaces them is run again without leaving anything behind.
  *
  * @returns their ids in the order given; null where one is not there or is another
  */
