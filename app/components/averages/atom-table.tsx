@@ -6,7 +6,8 @@ import { BlockHead } from "~/components/ui/finding";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import type { AveragesView, SaidView } from "~/lib/averages/averages-view";
-import { digitsFor, signalName } from "~/lib/averages/words";
+import { carrierNames, digitsFor, signalName } from "~/lib/averages/words";
+import { atomName } from "~/lib/chem/elements";
 import { ABSENT, fixed, formatDate, formatTemperature, plural, signed } from "~/lib/format";
 import { toCsv } from "~/lib/workbench/tsv";
 import { AtomDrawing } from "./atom-drawing";
@@ -53,6 +54,8 @@ export function AtomTable({
       members,
       split,
       name: signalName(members, ensemble.elements, ensemble.bonds),
+      atoms: members.map((atom) => atomName(ensemble.elements, atom)).join(", "),
+      carriers: carrierNames(members, ensemble.elements, ensemble.bonds),
     };
   });
   const apart = rows.filter((row) => row.split !== null);
@@ -151,7 +154,7 @@ export function AtomTable({
             </tr>
           </thead>
           <tbody>
-            {rows.map(({ one, contributions, mover, digits, name, members, split }) => (
+            {rows.map(({ one, contributions, mover, digits, name, atoms, carriers, members, split }) => (
               <Fragment key={one.property.id}>
                 <Tr selected={one.property.id === chosen}>
                   <Td wrap>
@@ -161,7 +164,10 @@ export function AtomTable({
                       aria-expanded={one.property.id === chosen}
                       onClick={() => setChosen(one.property.id === chosen ? null : one.property.id)}
                     >
-                      {name}
+                      {atoms}
+                      {carriers ? (
+                        <span className="block text-xs font-normal text-ink-3">on {carriers}</span>
+                      ) : null}
                     </button>
                     {split ? <span className="block text-xs text-ink-3">split by hand</span> : null}
                   </Td>

@@ -5,6 +5,7 @@ import { saveText } from "~/components/charts/export-figure";
 import { Badge } from "~/components/ui/badge";
 import { Button, ButtonLink } from "~/components/ui/button";
 import { BlockHead } from "~/components/ui/finding";
+import { BreakableName } from "~/components/ui/level-marker";
 import { Provenance } from "~/components/ui/provenance";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { useWorkbench } from "~/components/workbench/workbench-context";
@@ -190,6 +191,7 @@ function PropertyRow({
   const { property, average, moments } = one;
   const coupling = useCoupling(property);
   const digits = digitsFor(property.unit, average.value);
+  const origin = originWords(property);
   const bothHands = moments.mirrored.some((flag) => flag === 1);
   const rule = (
     <>
@@ -206,11 +208,14 @@ function PropertyRow({
           className="rounded-sm text-left font-medium [overflow-wrap:anywhere] hover:underline pointer-coarse:min-h-11"
           onClick={() => onChoose(property.id)}
         >
-          {property.name}
+          <BreakableName name={property.name} />
         </button>
         <span className="block text-xs text-ink-3">
-          <span className="xl:hidden">{rule}; </span>
-          <span className="[overflow-wrap:anywhere]">{originWords(property)}</span>
+          <span className="xl:hidden">
+            {rule}
+            {origin === "" ? "" : "; "}
+          </span>
+          <span className="[overflow-wrap:anywhere]">{origin}</span>
           {property.unit ? <span className="sm:hidden">, in {property.unit}</span> : null}
         </span>
       </Td>
@@ -325,7 +330,8 @@ function originWords(property: PropertyValues): string {
   if (property.definition) return observableWords(fromDefinition(property.definition, property.rule));
   const origin = property.origin ?? "";
   const name = /^(table|structures|key|field):(.*)$/.exec(origin);
-  if (name) return name[2] ?? "";
+  // A column that is called as in its file needs no second name.
+  if (name) return name[2] === property.name ? "" : (name[2] ?? "");
   return origin === "expression" ? "computed from columns" : origin;
 }
 

@@ -135,16 +135,32 @@ export function signalName(
   bonds: ArrayLike<number>,
 ): string {
   const names = atoms.map((atom) => atomName(elements, atom)).join(", ");
+  const on = carrierNames(atoms, elements, bonds);
+  return on === "" ? names : `${names} (on ${on})`;
+}
+
+/**
+ * Atoms that carry the hydrogens of a signal; "" where it has other atoms.
+ *
+ * @example carrierNames([10], elements, bonds) // "C2"
+ */
+export function carrierNames(
+  atoms: readonly number[],
+  elements: ArrayLike<number>,
+  bonds: ArrayLike<number>,
+): string {
+  if (!atoms.every((atom) => elements[atom] === 1)) return "";
   const members = new Set(atoms);
-  if (!atoms.every((atom) => elements[atom] === 1)) return names;
   const carriers = new Set<number>();
   for (let k = 0; k + 1 < bonds.length; k += 2) {
     const [a = -1, b = -1] = [bonds[k], bonds[k + 1]];
     if (members.has(a)) carriers.add(b);
     if (members.has(b)) carriers.add(a);
   }
-  const on = [...carriers].sort((a, b) => a - b).map((atom) => atomName(elements, atom));
-  return on.length === 0 ? names : `${names} (on ${on.join(", ")})`;
+  return [...carriers]
+    .sort((a, b) => a - b)
+    .map((atom) => atomName(elements, atom))
+    .join(", ");
 }
 
 function coverageWords(all: readonly { property: PropertyValues; average: Average }[]): string {
