@@ -50,7 +50,7 @@ export async function freezeFirst(at: { ensembleId: string; siftId: string }, te
     moment: [],
     outside: [],
     searches: [],
-    said: { splits: [], measured: [] },
+    said: { splits: [], measured: [], measuredProperties: null },
   });
   const content = buildContent(source, null);
   const packed: PackedFile[] = [];

@@ -12,6 +12,7 @@ import { distinctPopulations } from "~/lib/thermo/populations";
 import type { SiftView } from "~/lib/views";
 import type { Actor } from "~/services/auth/access.server";
 import { keepMeasured } from "~/services/averages/keep-measured.server";
+import { keepMeasuredProperties } from "~/services/averages/keep-measured-properties.server";
 import { loadAverages } from "~/services/averages/load-averages.server";
 import { loadTrust } from "~/services/averages/load-trust.server";
 import { addObservable, observableRequestSchema } from "~/services/averages/observe.server";
@@ -352,6 +353,53 @@ describe("what people say of averages", () => {
       { count: 1, changes: [{ before: null, after: "2.1" }] },
       { count: 0, changes: [{ before: "2.1", after: null }] },
     ]);
+  });
+
+  it("keeps measured values of properties by their names, and refuses what is no property", async () => {
+    const { said, properties } = await seen();
+    const name = properties.find(({ quantity }) => quantity === null)!.name;
+    const keep = (values: unknown, version = said.version) =>
+      keepMeasuredProperties({ ...person(), record: JSON.stringify({ values }), version });
+    await keep([[name, 1.85]]);
+    const kept = (await seen()).said;
+    expect(kept.properties).toMatchObject({ values: [[name, 1.85]], by: expect.any(String) });
+    expect(kept).toMatchObject({ version: said.version + 1, splits: said.splits, measured: said.measured });
+    await expect(keep([[name, 2]])).rejects.toMatchObject({ code: "conflict" });
+    for (const wrong of [
+      null,
+      [["nowhere", 1]],
+      [[name, 1e6]],
+      [[name, "1"]],
+      [[`${properties.find(({ quantity }) => quantity === "shift")!.name}`, 1]],
+      [
+        [name, 1],
+        [name, 2],
+      ],
+    ]) {
+      await expect(keep(wrong, kept.version), JSON.stringify(wrong)).rejects.toMatchObject({
+        code: "invalid",
+      });
+    }
+    // The same again changes nothing, whoever's page it comes from.
+    await keep([[name, 1.85]], 0);
+    expect((await seen()).said.version).toBe(kept.version);
+    await keep([], kept.version);
+    expect((await seen()).said.properties).toBeNull();
+    const rows = await db.select().from(logbook).where(eq(logbook.ensembleId, ensemble.id));
+    const told = rows.flatMap(({ type, data }) => (type === "measured-kept" ? [data] : []));
+    expect(told.slice(-2)).toMatchObject([
+      { quantity: "properties", count: 1, changes: [{ what: name, before: null, after: "1.85" }] },
+      { quantity: "properties", count: 0, changes: [{ what: name, before: "1.85", after: null }] },
+    ]);
+    const reader = await makeMember(lab.team.id, "reader");
+    const asReader: Actor = { kind: "user", userId: reader.id, sessionId: "m".repeat(16) };
+    await expect(
+      keepMeasuredProperties({
+        ...{ actor: asReader, ensembleId: ensemble.id },
+        record: JSON.stringify({ values: [[name, 1]] }),
+        version: 0,
+      }),
+    ).rejects.toMatchObject({ code: "forbidden" });
   });
 });
 

@@ -8,6 +8,8 @@ import { columns, editionFiles, editions, ensembles, jobs, logbook, verification
 import { canonicalJson } from "~/lib/edition/canonical-json";
 import { editionContentSchema } from "~/lib/edition/content";
 import { keepMeasured } from "~/services/averages/keep-measured.server";
+import { keepMeasuredProperties } from "~/services/averages/keep-measured-properties.server";
+import { loadAverages } from "~/services/averages/load-averages.server";
 import { joinAtoms, splitAtoms } from "~/services/averages/split-atoms.server";
 import { lockEnsemble, storeColumn } from "~/services/columns/store-column.server";
 import { askToVerify } from "~/services/editions/ask-to-verify.server";
@@ -452,6 +454,46 @@ describe("what people said of averages", () => {
     const words = later.editions[0]?.changed.join("; ");
     expect(words).toContain(`groups taken apart by hand: none instead of H${a} | H${b} | H${c}`);
     expect(words).toContain("measured values of shift gone");
+  });
+});
+
+describe("measured values of properties in an edition", () => {
+  it("stand beside its averages, in its files and methods text, and are told when they change", async () => {
+    const person = { actor: actor(), ensembleId: at.ensembleId };
+    const name = "coupling";
+    await inTransaction(async (tx) => {
+      const [row] = await tx.select().from(ensembles).where(eq(ensembles.id, at.ensembleId));
+      const where = { teamId: lab.team.id, ensembleId: at.ensembleId, userId: lab.analyst.id };
+      await lockEnsemble(tx, where);
+      await storeColumn(tx, where, {
+        ...{ name, kind: "property", unit: "Hz", origin: "table:couplings.csv" },
+        data: {
+          values: Float64Array.from({ length: row!.frames }, (_, k) => 5 + (k % 7)),
+          present: new Uint8Array(row!.frames).fill(1),
+        },
+      });
+    });
+    const { said } = await loadAverages({ ...person, siftId: at.siftId });
+    const keep = (values: [string, number][], version: number) =>
+      keepMeasuredProperties({ ...person, record: JSON.stringify({ values }), version });
+    await keep([[name, 1.5]], said.version);
+    const made = await freeze(actor(), at);
+    const content = editionContentSchema.parse(JSON.parse((await rowOf(made.id)).content));
+    const average = content.averages!.find(({ property }) => property === name)!.average!;
+    expect(content.measuredProperties).toMatchObject({
+      stated: { values: [[name, 1.5]] },
+      rows: [{ property: name, average, measured: 1.5, difference: average - 1.5 }],
+      units: [{ agreement: { n: 1, max: Math.abs(average - 1.5), maxAt: name, corrected: null } }],
+    });
+    expect(content.words.methods).toContain(
+      "Averages of 1 property were compared with measured values (1 value in",
+    );
+    expect((await bytesOf(made.id, "measured.csv")).toString("utf8")).toContain(`,1.5,${average - 1.5},`);
+    await keep([], said.version + 1);
+    expect(await verify(made)).toMatchObject({ same: true, differing: [] });
+    const shown = { siftId: at.siftId, temperature: 298.15, weights: "auto" as const, compare: null };
+    const { next } = await loadHandOver({ ...person, ...shown });
+    expect(next!.changed.join("; ")).toContain(`measured values of ${name} gone`);
   });
 });
 

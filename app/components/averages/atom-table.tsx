@@ -15,7 +15,7 @@ import { MeasuredBlock } from "./measured-block";
 import { PropertyFigures } from "./property-figures";
 import { anchorOf } from "./property-table";
 import { JoinGroup, SplitGroup } from "./split-group";
-import { type Averaged, type AveragedProperty, contributionsTo } from "./use-averages";
+import { type Averaged, type AveragedProperty, averageFacts, contributionsTo } from "./use-averages";
 import type { WeighedConformers } from "./use-weighed";
 
 /** A per-atom quantity: equivalent atoms share a row, beside the drawing that shows which they are. */
@@ -243,14 +243,7 @@ export function AtomTable({
       </div>
       <MeasuredBlock
         {...{ quantity, list, view }}
-        facts={{
-          temperatureK,
-          level: weighed.level.name,
-          weights: weighed.weights.kind,
-          sigma: averaged.draws === null ? null : sigma,
-          draws: averaged.draws,
-          seed: averaged.draws === null ? null : averaged.seed,
-        }}
+        facts={averageFacts(averaged, weighed, { temperatureK, sigma })}
       />
     </section>
   );

@@ -15,11 +15,18 @@ import { averagesFinding, propertyName } from "~/lib/averages/words";
 import { plural } from "~/lib/format";
 import { AtomTable } from "./atom-table";
 import { AveragesSettings } from "./averages-settings";
+import { MeasuredProperties } from "./measured-properties";
 import { PickColumn } from "./pick-column";
 import { PropertyFigures } from "./property-figures";
 import { PropertyTable } from "./property-table";
 import { RuleCard } from "./rule-card";
-import { type Averaged, type AveragedProperty, contributionsTo, useAverages } from "./use-averages";
+import {
+  type Averaged,
+  type AveragedProperty,
+  averageFacts,
+  contributionsTo,
+  useAverages,
+} from "./use-averages";
 import { useAveragesState } from "./use-averages-state";
 import { useLevelError, useWeighed, type WeighedConformers } from "./use-weighed";
 
@@ -114,6 +121,10 @@ function Filled({
   const [{ property: wanted }, changeAverages] = useAveragesState();
   const shown = useShown(averaged, weighed, wanted, temperatureK);
   const perAtom = useMemo(() => atomGroups(averaged.properties), [averaged.properties]);
+  const scalars = useMemo(
+    () => averaged.properties.filter(({ property }) => property.quantity === null),
+    [averaged.properties],
+  );
   const mirrorMerged = sift?.recipe.mirror === "merge" && sift.recipe.chirality === "achiral";
   const csv = csvAddress(view.siftId ?? "", temperatureK, state.weights, error.sigma, weighed.level.id);
   if (shown === null) return null;
@@ -133,10 +144,10 @@ function Filled({
         without: contributions.mover.contribution.without,
       },
     },
-    [
-      ...averaged.properties.filter(({ property }) => property.quantity === null),
-      ...perAtom.flatMap(({ list }) => list),
-    ].map(({ property, average }) => ({ property: named(property), average })),
+    [...scalars, ...perAtom.flatMap(({ list }) => list)].map(({ property, average }) => ({
+      property: named(property),
+      average,
+    })),
     temperatureK,
   );
   return (
@@ -192,6 +203,13 @@ function Filled({
             />
           ) : null}
         </>
+      ) : null}
+      {scalars.length > 0 ? (
+        <MeasuredProperties
+          list={scalars}
+          said={view.said}
+          facts={averageFacts(averaged, weighed, { temperatureK, sigma: error.sigma })}
+        />
       ) : null}
       {perAtom.map(({ quantity, list }) => (
         <AtomTable

@@ -4,17 +4,29 @@ import { Note } from "~/components/ui/note";
 import { TextButton } from "~/components/ui/text-link";
 import type { ActAnswer } from "~/components/workbench/act-answer";
 import { useWorkbench } from "~/components/workbench/workbench-context";
-import { measuredRecord, saysNothing } from "~/lib/averages/measured";
-import type { Measured } from "./use-measured";
 
 /** While the address holds a draft: that it is kept nowhere else, and the way to keep it with the ensemble. */
-export function KeepMeasured({ measured, version }: { measured: Measured; version: number }) {
+export function KeepMeasured({
+  intent,
+  record,
+  emptied,
+  anyKept,
+  version,
+  drop,
+}: {
+  intent: "measured" | "measured-properties";
+  /** The draft, as it is kept. */
+  record: object;
+  /** True where the draft says nothing any more. */
+  emptied: boolean;
+  anyKept: boolean;
+  version: number;
+  /** Back to what is kept. */
+  drop: () => void;
+}) {
   const { ensemble } = useWorkbench();
   const fetcher = useFetcher<ActAnswer>();
-  const { state, kept, draft, drop } = measured;
-  const [record, before] = [measuredRecord(state), measuredRecord(kept)];
-  if (!draft || (saysNothing(record) && saysNothing(before))) return null;
-  const emptied = saysNothing(record);
+  if (emptied && !anyKept) return null;
   return (
     <Note tone="mark">
       <fetcher.Form method="post" className="flex flex-wrap items-center gap-x-4 gap-y-2">
@@ -26,7 +38,7 @@ export function KeepMeasured({ measured, version }: { measured: Measured; versio
         </span>
         {ensemble.mayCompute ? (
           <>
-            <input type="hidden" name="intent" value="measured" />
+            <input type="hidden" name="intent" value={intent} />
             <input type="hidden" name="record" value={JSON.stringify(record)} />
             <input type="hidden" name="version" value={version} />
             <SubmitButton pending={fetcher.state !== "idle"} pendingLabel="Keeping…">
@@ -34,7 +46,7 @@ export function KeepMeasured({ measured, version }: { measured: Measured; versio
             </SubmitButton>
           </>
         ) : null}
-        <TextButton onClick={drop}>{saysNothing(before) ? "Drop them" : "Back to what is kept"}</TextButton>
+        <TextButton onClick={drop}>{anyKept ? "Back to what is kept" : "Drop them"}</TextButton>
         {fetcher.data && fetcher.data.ok !== true && fetcher.state === "idle" ? (
           <span role="alert" className="basis-full text-danger">
             {fetcher.data.message}

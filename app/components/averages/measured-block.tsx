@@ -8,7 +8,14 @@ import { TextButton } from "~/components/ui/text-link";
 import { useWorkbench } from "~/components/workbench/workbench-context";
 import { assignmentPairs, compareMeasured } from "~/lib/averages/assignment";
 import type { AveragesView } from "~/lib/averages/averages-view";
-import { areShieldings, asideWords, shieldingLike } from "~/lib/averages/measured";
+import {
+  areShieldings,
+  asideWords,
+  measuredRecord,
+  readPasted,
+  saysNothing,
+  shieldingLike,
+} from "~/lib/averages/measured";
 import { type AverageFacts, agreementCsv, besideCsv } from "~/lib/averages/measured-csv";
 import { atomName, symbolOf } from "~/lib/chem/elements";
 import { fixed, formatDateTime, plural } from "~/lib/format";
@@ -42,6 +49,7 @@ export function MeasuredBlock({
   const fromOne = useMemo(() => groups.map((atoms) => atoms.map((atom) => atom + 1)), [groups]);
   const measured = useMeasured(quantity, view.said, fromOne);
   const { state, change } = measured;
+  const record = measuredRecord(state);
   const unit = list[0]?.property.unit ?? null;
   const shieldings = areShieldings(state, unit);
   const pairs = useMemo(() => {
@@ -97,7 +105,16 @@ export function MeasuredBlock({
             {said.by === null ? "" : ` by ${said.by}`}, {formatDateTime(said.at)}.
           </p>
         ) : null}
-        <KeepMeasured measured={measured} version={view.said.version} />
+        {measured.draft ? (
+          <KeepMeasured
+            intent="measured"
+            record={record}
+            emptied={saysNothing(record)}
+            anyKept={!saysNothing(measuredRecord(measured.kept))}
+            version={view.said.version}
+            drop={measured.drop}
+          />
+        ) : null}
         {unit === "ppm" ? (
           <Segments
             label="The numbers of the table are"
@@ -122,8 +139,14 @@ export function MeasuredBlock({
           </Note>
         ) : null}
         <MeasuredPaste
-          groupOf={groupOf}
-          onRead={(values) => change({ values: new Map([...state.values, ...values]) })}
+          label="A list to take in, an atom and a value a line"
+          placeholder={"C1 77.30\nH4 1.21"}
+          expected="an atom of the table and a number with a decimal point: C4 77.3"
+          onTake={(text) => {
+            const { values, unread } = readPasted(text, groupOf);
+            if (values.size > 0) change({ values: new Map([...state.values, ...values]) });
+            return unread;
+          }}
         />
         <MeasuredNuclei {...{ nuclei, shieldings, unit, nameOf, state, change }} />
         <AssignmentTable

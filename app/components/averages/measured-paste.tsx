@@ -1,38 +1,42 @@
 import { type FormEvent, useId, useState } from "react";
 import { SubmitButton } from "~/components/ui/button";
 import { Field, frameClass } from "~/components/ui/field";
-import { readPasted } from "~/lib/averages/measured";
 
 /** Measured values as a pasted list. */
 export function MeasuredPaste({
-  groupOf,
-  onRead,
+  label,
+  placeholder,
+  expected,
+  onTake,
 }: {
-  groupOf: ReadonlyMap<number, number>;
-  onRead: (values: ReadonlyMap<number, number>) => void;
+  label: string;
+  placeholder: string;
+  /** What a line has to be: "an atom of the table and a number with a decimal point: C4 77.3". */
+  expected: string;
+  /** Takes what the text says, and returns the lines that say nothing. */
+  onTake: (text: string) => string[];
 }) {
   const id = useId();
   const [text, setText] = useState("");
   const [said, setSaid] = useState<string | null>(null);
   const take = (event: FormEvent) => {
     event.preventDefault();
-    const { values, unread } = readPasted(text, groupOf);
-    if (values.size > 0) onRead(values);
+    const unread = onTake(text);
     setSaid(
       unread.length > 0
-        ? `Not read: ${unread.slice(0, 3).join("; ")}${unread.length > 3 ? ` and ${unread.length - 3} more` : ""}. A line is an atom of the table and a number with a decimal point: C4 77.3.`
+        ? `Not read: ${unread.slice(0, 3).join("; ")}${unread.length > 3 ? ` and ${unread.length - 3} more` : ""}. A line is ${expected}.`
         : null,
     );
     if (unread.length === 0) setText("");
   };
   return (
     <form onSubmit={take} className="grid max-w-read gap-3 print:hidden">
-      <Field id={id} label="A list to take in, an atom and a value a line" error={said ?? undefined}>
+      <Field id={id} label={label} error={said ?? undefined}>
         <textarea
           id={id}
           rows={3}
           value={text}
-          placeholder={"C1 77.30\nH4 1.21"}
+          placeholder={placeholder}
           spellCheck={false}
           aria-invalid={said ? true : undefined}
           aria-describedby={said ? `${id}-error` : undefined}

@@ -4,6 +4,7 @@ import { useLevelTask } from "~/hooks/use-level-task";
 import { type Average, averageOf, type Moments } from "~/lib/averages/average";
 import type { AveragesView } from "~/lib/averages/averages-view";
 import { type Contribution, contributionsOf, mostMoving } from "~/lib/averages/contributions";
+import type { AverageFacts } from "~/lib/averages/measured-csv";
 import {
   averageErrorsOf,
   DRAWN_AT_ONCE,
@@ -36,6 +37,20 @@ export interface Averaged {
   populations: Float64Array;
   draws: number | null;
   seed: number;
+}
+
+/** What averages belong to, as files that leave the page say it. */
+export function averageFacts(
+  { draws, seed }: Averaged,
+  { level, weights }: WeighedConformers,
+  { temperatureK, sigma }: { temperatureK: number; sigma: number | null },
+): AverageFacts {
+  return {
+    temperatureK,
+    level: level.name,
+    weights: weights.kind,
+    ...(draws === null ? { sigma: null, draws: null, seed: null } : { sigma, draws, seed }),
+  };
 }
 
 /** Averages of every property at every temperature shown, with the uncertainty that the level's error makes. */

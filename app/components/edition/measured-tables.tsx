@@ -1,16 +1,20 @@
+import { BreakableName } from "~/components/ui/level-marker";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { asideWords } from "~/lib/averages/measured";
 import { agreementWords, assignmentWords, scalingWords } from "~/lib/averages/measured-words";
+import { asTyped, digitsFor } from "~/lib/averages/words";
 import { symbolOf } from "~/lib/chem/elements";
 import { atomNames, type EditionMeasured, setAsideIn } from "~/lib/edition/measured";
+import { agreementFigures, type EditionFigures } from "~/lib/edition/measured-figures";
 import type { EditionView } from "~/lib/edition/views";
 import { ABSENT, fixed, formatTemperature, signed } from "~/lib/format";
 import { EditionHead } from "./edition-head";
 
 /** Averages beside what was measured, each nucleus by itself, with the assignments chosen. */
 export function MeasuredTables({ edition }: { edition: EditionView }) {
-  const { measured, temperature } = edition;
-  if (measured.length === 0 || temperature === null) return null;
+  const { measured, measuredProperties: figures, temperature } = edition;
+  const any = measured.length > 0 || (figures !== null && figures !== undefined && figures.rows.length > 0);
+  if (!any || temperature === null) return null;
   return (
     <section className="mt-10" aria-labelledby="edition-measured">
       <EditionHead id="edition-measured">
@@ -19,7 +23,54 @@ export function MeasuredTables({ edition }: { edition: EditionView }) {
       {measured.map((one) => (
         <Quantity key={one.quantity} measured={one} elements={edition.ensemble.elements} />
       ))}
+      {figures && figures.rows.length > 0 ? <Properties figures={figures} /> : null}
     </section>
+  );
+}
+
+function Properties({ figures: { rows, units } }: { figures: EditionFigures }) {
+  return (
+    <div className="mt-4">
+      <h3 className="text-sm font-semibold">Properties</h3>
+      {units.map(({ unit, agreement }) => (
+        <p key={unit} className="keep figures mt-2 max-w-read">
+          <b>{unit}</b> {agreementWords(agreementFigures(agreement), unit, agreement.maxAt, false)}
+        </p>
+      ))}
+      <Table aria-label="Properties beside measured values" className="figures mt-3">
+        <thead>
+          <tr>
+            <Th>Property</Th>
+            <Th align="right">Average</Th>
+            <Th align="right" unit="level error" className="max-sm:hidden">
+              ±
+            </Th>
+            <Th align="right">Measured</Th>
+            <Th align="right">Difference</Th>
+            <Th>Unit</Th>
+          </tr>
+        </thead>
+        <tbody>
+          {rows.map(({ property, unit, average, error, measured, difference }) => {
+            const digits = digitsFor(unit, average);
+            return (
+              <Tr key={property}>
+                <Td wrap className="font-medium">
+                  <BreakableName name={property} />
+                </Td>
+                <Td align="right">{fixed(average, digits)}</Td>
+                <Td align="right" className="max-sm:hidden">
+                  {fixed(error, digits)}
+                </Td>
+                <Td align="right">{asTyped(measured, digits)}</Td>
+                <Td align="right">{difference === null ? ABSENT : signed(difference, digits)}</Td>
+                <Td className="text-ink-2">{unit ?? ""}</Td>
+              </Tr>
+            );
+          })}
+        </tbody>
+      </Table>
+    </div>
   );
 }
 
@@ -37,13 +88,7 @@ function Quantity({ measured, elements }: { measured: EditionMeasured; elements:
           <p key={z} className="keep figures mt-2 max-w-read">
             <b>{symbolOf(z)}</b>{" "}
             {agreementWords(
-              {
-                ...{ n: agreement.n, mad: agreement.mae, rmsd: agreement.rmse, max: agreement.max },
-                corrected: agreement.corrected && {
-                  line: { slope: agreement.corrected.m, intercept: agreement.corrected.b, n: agreement.n },
-                  mad: agreement.corrected.mae,
-                },
-              },
+              agreementFigures(agreement),
               unit,
               nameOf(agreement.maxAt),
               line?.from === "fitted",

@@ -1,4 +1,4 @@
-import type { MeasuredRecord } from "./averaging.ts";
+import type { MeasuredProperties, MeasuredRecord } from "./averaging.ts";
 import type { PropertyValues } from "./property-set.ts";
 
 /** What people said of averages, with the name of who did (null for guests, or where the person is gone) and when. */
@@ -8,6 +8,8 @@ export interface SaidView {
   /** Atoms from 1. */
   splits: { parts: number[][]; by: string | null; at: string }[];
   measured: (MeasuredRecord & { by: string | null; at: string })[];
+  /** Of properties of the whole molecule; null where nothing is kept. */
+  properties: (MeasuredProperties & { by: string | null; at: string }) | null;
 }
 
 /** What the loader of the averages hands to the page; values by position in the distinct set. */

@@ -30,10 +30,17 @@ export const measuredRecordSchema = z.object({
 });
 export type MeasuredRecord = z.infer<typeof measuredRecordSchema>;
 
+/** Measured values of properties of the whole molecule: name of the column and value, by name. */
+export const measuredPropertiesSchema = z.object({
+  values: z.array(z.tuple([z.string().min(1).max(120), z.number()])),
+});
+export type MeasuredProperties = z.infer<typeof measuredPropertiesSchema>;
+
 export const averagingSchema = z.object({
   splits: z.array(atomSplitSchema).default([]),
   measured: z.array(measuredRecordSchema.extend(said)).default([]),
+  properties: measuredPropertiesSchema.extend(said).nullable().default(null),
 });
 export type Averaging = z.infer<typeof averagingSchema>;
 
-export const NOTHING_SAID: Averaging = { splits: [], measured: [] };
+export const NOTHING_SAID: Averaging = { splits: [], measured: [], properties: null };

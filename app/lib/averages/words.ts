@@ -30,6 +30,16 @@ export function digitsFor(unit: string | null, value: number | null): number {
   return size >= 1 || size === 0 ? 3 : 4;
 }
 
+/**
+ * A measured value with the decimals of the averages beside it, or with its own where it was typed with more.
+ *
+ * @example asTyped(63.5, 0) // "63.5"; asTyped(7, 2) // "7.00"
+ */
+export function asTyped(value: number, digits: number): string {
+  const own = String(value).split(".")[1]?.length ?? 0;
+  return fixed(value, Math.max(digits, Math.min(own, 6)));
+}
+
 /** A value of a property with its unit. */
 export function valueWords(property: { unit: string | null }, value: number | null): string {
   return withUnit(fixed(value, digitsFor(property.unit, value)), property.unit ?? "");

@@ -1,4 +1,4 @@
-import type { MeasuredRecord } from "../averages/averaging.ts";
+import type { MeasuredProperties, MeasuredRecord } from "../averages/averaging.ts";
 import type { PropertyValues } from "../averages/property-set.ts";
 import { RULE_WORDS } from "../averages/rule.ts";
 import { CAUTION } from "../export/json.ts";
@@ -14,6 +14,7 @@ import type { EditionContent, EditionPopulations, OpenItem } from "./content.ts"
 import { shapeExtent } from "./extent.ts";
 import { editionFindings } from "./findings.ts";
 import { measuredSection, measuredSentences } from "./measured.ts";
+import { figuresSection, figuresSentence } from "./measured-figures.ts";
 import { methodsText } from "./methods-text.ts";
 import { openItems } from "./open.ts";
 import { editionRows } from "./rows.ts";
@@ -64,6 +65,7 @@ export interface EditionSource {
   splits: readonly (readonly (readonly number[])[])[];
   /** Measured values, as they were entered. */
   measured: readonly MeasuredRecord[];
+  measuredProperties: MeasuredProperties | null;
 }
 
 /** What is to be drawn for an edition; null where there are no populations or no error. */
@@ -100,6 +102,7 @@ export function buildContent(source: EditionSource, drawn: DrawnUncertainty | nu
     first ? undefined : (drawn?.averages ?? null),
   );
   const measured = measuredSection(source.properties, averages, source.ensemble, source.measured);
+  const figures = figuresSection(source.properties, averages, source.measuredProperties);
   const facts = {
     schema: "lowlying-edition" as const,
     version: contentVersion,
@@ -135,6 +138,7 @@ export function buildContent(source: EditionSource, drawn: DrawnUncertainty | nu
       ? { splits: source.splits.map((parts) => parts.map((part) => [...part])) }
       : {}),
     ...(measured === undefined ? {} : { measured }),
+    ...(figures === undefined ? {} : { measuredProperties: figures }),
     uncertainty: uncertaintySection(drawn, source.sigmaFrom),
     temperatures: first
       ? null
@@ -250,6 +254,7 @@ function furtherSentences(
     | "searches"
     | "splits"
     | "measured"
+    | "measuredProperties"
   >,
 ) {
   const { averages, comparisons, level, uncertainty } = facts;
@@ -260,6 +265,7 @@ function furtherSentences(
       : `${plural(averages.length, "property was", "properties were")} averaged over the conformers with these populations ` +
         `(${rules.length === 1 ? "rule" : "rules"}: ${joinWords(rules)}); what covers less than 90 % of the population is not averaged.`,
     ...measuredSentences(facts),
+    figuresSentence(facts.measuredProperties),
     comparisons.length === 0
       ? null
       : `${level?.name ?? "The level"} was compared with ${joinWords(comparisons.map(({ reference }) => reference))} ` +

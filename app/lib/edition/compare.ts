@@ -84,6 +84,7 @@ export type Comparable = Pick<
   | "open"
   | "splits"
   | "measured"
+  | "measuredProperties"
 > & { columns: readonly { name: string; sha256: string }[] };
 
 const NOT_THERE = "it has no such average";
@@ -256,8 +257,11 @@ function changesOf(a: Comparable, b: Comparable): EditionChange[] {
 /** Of which quantities measured values came, changed or went. */
 function measuredWords(a: Comparable, b: Comparable): string[] {
   const [before, after] = [a, b].map(
-    ({ measured }) =>
-      new Map((measured ?? []).map(({ quantity, stated }) => [quantity, JSON.stringify(stated)])),
+    ({ measured, measuredProperties }) =>
+      new Map([
+        ...(measured ?? []).map(({ quantity, stated }) => [quantity, JSON.stringify(stated)] as const),
+        ...(measuredProperties?.stated.values ?? []).map(([name, value]) => [name, String(value)] as const),
+      ]),
   );
   const [was, is] = [before ?? new Map<string, string>(), after ?? new Map<string, string>()];
   return [...new Set([...is.keys(), ...was.keys()])]

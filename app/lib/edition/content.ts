@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { measuredRecordSchema } from "../averages/averaging.ts";
+import { measuredPropertiesSchema, measuredRecordSchema } from "../averages/averaging.ts";
 import { AVERAGE_RULES } from "../averages/rule.ts";
 import { siftRecipeSchema } from "../recipe/recipe.ts";
 
@@ -187,6 +187,15 @@ const lineSchema = z.object({
   from: z.enum(["fitted", "typed"]),
 });
 
+const agreementSchema = z.object({
+  n: z.number().int(),
+  mae: finite,
+  rmse: finite,
+  max: finite,
+  /** Computed = m measured + b, and the mean error once that is taken out; from five values on. */
+  corrected: z.object({ m: finite, b: finite, mae: finite }).nullable(),
+});
+
 /** Averages of a per-atom quantity beside measured values; each nucleus by itself. Atoms count from 1. */
 const measuredSchema = z.object({
   quantity: z.string(),
@@ -199,17 +208,9 @@ const measuredSchema = z.object({
     z.object({
       z: z.number().int(),
       line: lineSchema.nullable(),
-      agreement: z
-        .object({
-          n: z.number().int(),
-          mae: finite,
-          rmse: finite,
-          max: finite,
-          /** First atom of the group with the largest deviation. */
-          maxAt: z.number().int(),
-          /** Computed = m measured + b, and the mean error once that is taken out; from five values on. */
-          corrected: z.object({ m: finite, b: finite, mae: finite }).nullable(),
-        })
+      agreement: agreementSchema
+        /** First atom of the group with the largest deviation. */
+        .extend({ maxAt: z.number().int() })
         .nullable(),
       groups: z.array(
         z.object({
@@ -234,6 +235,25 @@ const measuredSchema = z.object({
       swapped: z.object({ mae: finite, nucleusMae: finite }),
     }),
   ),
+});
+
+/** Averages of properties of the whole molecule beside measured values. */
+const measuredFiguresSchema = z.object({
+  /** As people entered it. */
+  stated: measuredPropertiesSchema,
+  /** Those that were measured, in the order of the averages. */
+  rows: z.array(
+    z.object({
+      property: z.string(),
+      unit: z.string().nullable(),
+      average: finite.nullable(),
+      error: finite.nullable(),
+      measured: finite,
+      difference: finite.nullable(),
+    }),
+  ),
+  /** Judged together a unit; `maxAt` names the property with the largest deviation. */
+  units: z.array(z.object({ unit: z.string(), agreement: agreementSchema.extend({ maxAt: z.string() }) })),
 });
 
 export const editionContentSchema = z.object({
@@ -314,6 +334,7 @@ export const editionContentSchema = z.object({
   splits: z.array(z.array(z.array(z.number().int()))).optional(),
   /** Absent where nothing was measured. */
   measured: z.array(measuredSchema).optional(),
+  measuredProperties: measuredFiguresSchema.optional(),
   uncertainty: uncertaintySchema.nullable().default(null),
   temperatures: temperaturesSchema.nullable().default(null),
   open: z.array(openItemSchema).default([]),

@@ -9,6 +9,7 @@ import type { EditionContent } from "./content.ts";
 import { contentText } from "./content-text.ts";
 import { editionFigures } from "./figures.ts";
 import { measuredTables } from "./measured.ts";
+import { measuredFigures } from "./measured-figures.ts";
 import { type FrameEnergy, framesCsv, temperaturesCsv } from "./tables.ts";
 
 /** A file of an edition, in pieces that are made as they are taken. */
@@ -53,11 +54,17 @@ export function editionFiles(
             ],
           },
         ]),
-    ...(content.measured === undefined
+    ...(content.measured === undefined && content.measuredProperties === undefined
       ? []
       : [
-          { name: "measured.csv", pieces: [besideCsv(measuredTables(content))] },
-          { name: "agreement.csv", pieces: [agreementCsv(measuredTables(content))] },
+          {
+            name: "measured.csv",
+            pieces: [besideCsv(measuredTables(content), null, measuredFigures(content))],
+          },
+          {
+            name: "agreement.csv",
+            pieces: [agreementCsv(measuredTables(content), null, measuredFigures(content))],
+          },
         ]),
     ...(content.temperatures === null
       ? []

@@ -8,6 +8,7 @@ import { fixed, plural, withUnit } from "../format.ts";
 import { makeGraph } from "../structure.ts";
 import { joinWords } from "../workbench/findings.ts";
 import type { EditionContent } from "./content.ts";
+import { agreementFigures } from "./measured-figures.ts";
 
 export type EditionMeasured = NonNullable<EditionContent["measured"]>[number];
 
@@ -145,14 +146,7 @@ export function measuredTables({ measured, ensemble }: EditionContent): Measured
         z,
         line,
         farthest: agreement?.maxAt ?? null,
-        agreement: agreement && {
-          ...{ n: agreement.n, mad: agreement.mae, msd: 0, rmsd: agreement.rmse },
-          ...{ max: agreement.max, maxPlace: 0 },
-          corrected: agreement.corrected && {
-            line: { slope: agreement.corrected.m, intercept: agreement.corrected.b, n: agreement.n },
-            mad: agreement.corrected.mae,
-          },
-        },
+        agreement: agreement && { ...agreementFigures(agreement), msd: 0, maxPlace: 0 },
         groups: own.map(({ atoms, error, ...rest }) => ({
           ...rest,
           ...{ atom: atoms[0] ?? 0, z, error, computedError: error },

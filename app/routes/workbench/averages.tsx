@@ -7,6 +7,7 @@ import { readState } from "~/lib/url-state";
 import { readForm } from "~/routes/read-form.server";
 import type { Actor } from "~/services/auth/access.server";
 import { keepMeasured } from "~/services/averages/keep-measured.server";
+import { keepMeasuredProperties } from "~/services/averages/keep-measured-properties.server";
 import { loadAverages } from "~/services/averages/load-averages.server";
 import { addObservable, observableRequestSchema } from "~/services/averages/observe.server";
 import { setRule } from "~/services/averages/set-rule.server";
@@ -64,6 +65,11 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
       const asked = { record: text("record"), version: Number(text("version")) };
       await keepMeasured({ actor, ensembleId, ...asked });
       return { ok: true, done: { intent: "measured" } } satisfies ActAnswer;
+    }
+    case "measured-properties": {
+      const asked = { record: text("record"), version: Number(text("version")) };
+      await keepMeasuredProperties({ actor, ensembleId, ...asked });
+      return { ok: true, done: { intent: "measured-properties" } } satisfies ActAnswer;
     }
     default:
       throw notFound();

@@ -43,7 +43,13 @@ export async function storeAveraging(
  */
 export async function saidView(ensembleId: string, named: boolean): Promise<SaidView> {
   const { data, version } = await findAveraging(ensembleId);
-  const ids = [...new Set([...data.splits, ...data.measured].flatMap(({ by }) => by ?? []))];
+  const ids = [
+    ...new Set(
+      [...data.splits, ...data.measured, ...(data.properties ? [data.properties] : [])].flatMap(
+        ({ by }) => by ?? [],
+      ),
+    ),
+  ];
   const people =
     !named || ids.length === 0
       ? []
@@ -53,5 +59,6 @@ export async function saidView(ensembleId: string, named: boolean): Promise<Said
     version,
     splits: data.splits.map(({ parts, by, at }) => ({ parts, by: nameOf(by), at })),
     measured: data.measured.map(({ by, ...rest }) => ({ ...rest, by: nameOf(by) })),
+    properties: data.properties && { ...data.properties, by: nameOf(data.properties.by) },
   };
 }

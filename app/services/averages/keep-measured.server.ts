@@ -4,28 +4,22 @@ import { columns, ensembles } from "../../db/schema.server.ts";
 import { type MeasuredRecord, measuredRecordSchema } from "../../lib/averages/averaging.ts";
 import { MOST_MEASURED, saysNothing } from "../../lib/averages/measured.ts";
 import { atomName } from "../../lib/chem/elements.ts";
-import { DomainError } from "../../lib/errors.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { lockEnsemble, touchEnsemble } from "../columns/store-column.server.ts";
 import { notFound } from "../http.server.ts";
-import { writeEntry } from "../logbook/write-entry.server.ts";
 import { findAveraging, storeAveraging } from "./averaging.server.ts";
-
-function refused(message: string): DomainError {
-  return new DomainError("invalid", "The measured values were not kept", message, {
-    faults: [{ field: "record", message }],
-  });
-}
+import {
+  assertUnchanged,
+  changesOf,
+  jsonSent,
+  refused,
+  type SaidChange,
+  tellMeasured,
+} from "./measured-kept.server.ts";
 
 /** What a form sent, checked: finite numbers, each atom once, no slope of 0. */
 function readRecord(json: string): MeasuredRecord {
-  let parsed: unknown;
-  try {
-    parsed = JSON.parse(json);
-  } catch {
-    parsed = null;
-  }
-  const read = measuredRecordSchema.safeParse(parsed);
+  const read = measuredRecordSchema.safeParse(jsonSent(json));
   if (!read.success) throw refused("What was sent are no measured values. Load the page again.");
   const record = read.data;
   const numbers = [
@@ -81,14 +75,12 @@ async function atomsOf(tx: Transaction, ensembleId: string, record: MeasuredReco
   return { unit: column.unit, nameOf: (atom: number) => atomName(elements, atom - 1) };
 }
 
-const MOST_TOLD = 40;
-
 /** What differs, value by value, as the logbook tells it. */
 function changesBetween(
   before: MeasuredRecord | undefined,
   after: MeasuredRecord,
   nameOf: (atom: number) => string,
-): { what: string; before: string | null; after: string | null }[] {
+): SaidChange[] {
   // A record of before the atoms were kept with each value is named as the one that follows it.
   const later = new Map(after.of ?? []);
   const named = (atoms: readonly number[]) => atoms.map(nameOf).join(", ");
@@ -107,10 +99,7 @@ function changesBetween(
       ),
       ...(record?.are ? [["computed numbers are", record.are] as const] : []),
     ]);
-  const [from, to] = [said(before), said(after)];
-  return [...new Set([...from.keys(), ...to.keys()])]
-    .map((what) => ({ what, before: from.get(what) ?? null, after: to.get(what) ?? null }))
-    .filter((change) => change.before !== change.after);
+  return changesOf(said(before), said(after));
 }
 
 /**
@@ -136,25 +125,13 @@ export async function keepMeasured(options: {
     const before = data.measured.find(({ quantity }) => quantity === record.quantity);
     const changes = changesBetween(before, record, nameOf);
     if (changes.length === 0 || (before === undefined && saysNothing(record))) return;
-    if (version !== options.version) {
-      const message =
-        "Somebody changed groups or measured values since this page was opened. Load it again: your values stay in its address.";
-      throw new DomainError("conflict", "Changed meanwhile", message);
-    }
+    assertUnchanged(version, options.version);
     const others = data.measured.filter((one) => one !== before);
     const kept = { ...record, by: grant.userId, at: new Date().toISOString() };
     const measured = saysNothing(record) ? others : [...others, kept];
     await storeAveraging(tx, grant.ensembleId, { ...data, measured }, version);
     await touchEnsemble(tx, grant.ensembleId);
-    await writeEntry(tx, grant, grant, {
-      type: "measured-kept",
-      data: {
-        quantity: record.quantity,
-        unit,
-        count: record.values.length,
-        changes: changes.slice(0, MOST_TOLD),
-        more: Math.max(0, changes.length - MOST_TOLD),
-      },
-    });
+    const { quantity, values } = record;
+    await tellMeasured(tx, grant, { quantity, unit, count: values.length, changes });
   });
 }

@@ -214,7 +214,7 @@ export async function editionSource(options: {
   moment: readonly OpenItem[];
   outside: EditionSource["outside"];
   searches: EditionSource["searches"];
-  said: Pick<EditionSource, "splits" | "measured">;
+  said: Pick<EditionSource, "splits" | "measured" | "measuredProperties">;
 }): Promise<EditionSource> {
   const { ensemble, described, recipe, result, level, columns: all, frames: collected } = options;
   const own = level && all.find(({ kind, name }) => kind === "energy" && name === level.name);
@@ -263,13 +263,14 @@ export async function editionSource(options: {
 /** Groups taken apart and measured values of an ensemble as an edition freezes them: without who said it. */
 export async function saidForEdition(
   ensembleId: string,
-): Promise<Pick<EditionSource, "splits" | "measured">> {
+): Promise<Pick<EditionSource, "splits" | "measured" | "measuredProperties">> {
   const { data } = await findAveraging(ensembleId);
   return {
     splits: data.splits.map(({ parts }) => parts),
     measured: data.measured
       .map(({ by: _by, at: _at, ...record }): MeasuredRecord => record)
       .sort((a, b) => (a.quantity < b.quantity ? -1 : 1)),
+    measuredProperties: data.properties && { values: data.properties.values },
   };
 }
 

@@ -105,6 +105,7 @@ export async function toEditionView(
     },
     temperatures: temperaturesView(content),
     measured: (content.measured ?? []).filter(({ nuclei }) => nuclei.length > 0),
+    measuredProperties: content.measuredProperties ?? null,
     searches: content.searches ?? null,
     open: content.open,
     rows: editionRows(content).slice(0, MOST_ROWS),

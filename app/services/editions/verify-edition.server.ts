@@ -338,6 +338,7 @@ async function recompute(frozen: Frozen, run: JobRun): Promise<VerifiedFile[]> {
     said: {
       splits: edition.content.splits ?? [],
       measured: (edition.content.measured ?? []).map(({ quantity, stated }) => ({ quantity, ...stated })),
+      measuredProperties: edition.content.measuredProperties?.stated ?? null,
     },
     moment: edition.content.open.filter(({ code }) => MOMENT_CODES.some((one) => one === code)),
   });
