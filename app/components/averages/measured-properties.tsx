@@ -151,7 +151,9 @@ function FiguresTable({
       <thead>
         <tr>
           <Th>Property</Th>
-          <Th align="right">Average, {formatTemperature(temperatureK)} K</Th>
+          <Th align="right" unit={`${formatTemperature(temperatureK)} K`}>
+            Average
+          </Th>
           <Th align="right" className="max-sm:hidden">
             Uncertainty
           </Th>
@@ -178,7 +180,7 @@ function FiguresTable({
                 <NumberField
                   label={`Measured, ${name}`}
                   hideLabel
-                  className="w-24 print:hidden"
+                  className="w-24 max-sm:w-20 print:hidden"
                   value={measured}
                   optional
                   min={-MEASURED_BELOW}

@@ -65,7 +65,9 @@ export function AveragesText() {
         of the reference. Against measured values: mean absolute, root mean square and largest deviation, a
         nucleus at a time and never pooled; from {FEWEST_FOR_CORRECTION} pairs on also the line of computed
         against measured values, d = m e + b, and the mean absolute deviation of (d − b)/m. A line fitted to
-        the values that it is compared with flatters.
+        the values that it is compared with flatters. Properties of the whole molecule (couplings, distances)
+        are set beside measured ones unit by unit, angles the short way round; those without a unit are
+        compared, not pooled.
       </p>
       <p>
         Two signals that the bonds do not tell apart (diastereotopic hydrogens or groups, parts of a group
