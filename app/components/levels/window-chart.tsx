@@ -180,8 +180,9 @@ function DropLines({
         const y = plot.y(100 * kept);
         // The leftmost reading goes lowest: its words then have the room to the right below the others.
         const foot = plot.bottom - 44 - ((all.length - 1 - k) * (height - 130)) / Math.max(1, all.length);
-        const words = `${formatWindowToCarry(reading.kcal, nextWindow(shown, reading.kcal))} kcal/mol, ${plural(reading.count, "conformer")}`;
-        const end = x + 6.2 * words.length > plot.right;
+        const width = `${formatWindowToCarry(reading.kcal, nextWindow(shown, reading.kcal))} kcal/mol`;
+        const count = plural(reading.count, "conformer");
+        const { end, lines } = beside(x, `${width}, ${count}`, [width, count], plot);
         const colour = reading.mark ? "var(--color-mark)" : "var(--color-ink-3)";
         return (
           <g key={`${reading.share}-${reading.mark}`}>
@@ -200,20 +201,39 @@ function DropLines({
             <ChartText x={end ? x - 4 : x + 4} y={foot} end={end} tone={reading.mark ? "mark" : "ink"} halo>
               {shareWords(reading.share)}
             </ChartText>
-            <ChartText
-              x={end ? x - 4 : x + 4}
-              y={foot + 15}
-              end={end}
-              tone={reading.mark ? "mark" : "plain"}
-              halo
-            >
-              {words}
-            </ChartText>
+            {lines.map((line, row) => (
+              <ChartText
+                key={line}
+                x={end ? x - 4 : x + 4}
+                y={foot + 15 * (row + 1)}
+                end={end}
+                tone={reading.mark ? "mark" : "plain"}
+                halo
+              >
+                {line}
+              </ChartText>
+            ))}
           </g>
         );
       })}
     </>
   );
+}
+
+/** Width of a letter of the small chart text, px: an upper estimate. */
+const LETTER = 6.2;
+
+/** Words beside a line at x: to its right in one line, else to its left, else broken on the side with more room. */
+function beside(
+  x: number,
+  whole: string,
+  broken: readonly string[],
+  { left, right }: { left: number; right: number },
+): { end: boolean; lines: readonly string[] } {
+  const room = LETTER * whole.length;
+  if (x + room <= right) return { end: false, lines: [whole] };
+  if (x - room >= left) return { end: true, lines: [whole] };
+  return { end: x - left > right - x, lines: broken };
 }
 
 /** "21 of 31 conformers". */
