@@ -296,6 +296,57 @@ describe("a table", () => {
     expect(await storedRows()).toEqual(before);
   });
 
+  it("shows a table as the proposed way of writing numbers reads it, while that is open", async () => {
+    const { id } = await ensemble(3);
+    const file = table("frame;DFT [kcal/mol];rg [nm]\n1;0,25;0,4\n2;1,5;0,5\n3;2,0;0,6\n");
+    const { body } = await add(id, file, { preview: "true" });
+    type Asked = { id: string; options: { id: string; proposed?: boolean }[] };
+    const proposed = (questions: Asked[]) =>
+      questions.map(({ id: asked, options }) => [asked, options.find((one) => one.proposed)?.id ?? null]);
+    expect(proposed(body.questions)).toEqual([["numbers", "comma"]]);
+    expect(body.columns.map(({ count }: { count: number }) => count)).toEqual([3, 3]);
+    const codes = body.messages.map(({ code }: { code: string }) => code);
+    expect(codes).toEqual(["E13"]);
+    expect((await add(id, file)).status).toBe(422);
+    // Two ways of writing in one table: none is proposed, and nothing is said of energies that were not read.
+    const mixed = table("frame;DFT [kcal/mol]\n1;0,25\n2;1.234,5\n3;1,234.5\n");
+    const open = (await add(id, mixed, { preview: "true" })).body;
+    expect(proposed(open.questions)).toEqual([["numbers", null]]);
+    expect(open.messages.filter(({ code }: { code: string }) => code.startsWith("E"))).toEqual([]);
+  });
+
+  it("takes what looks like an energy and names no unit as a property, and says so", async () => {
+    const { id } = await ensemble(3);
+    const file = table(
+      "frame,energy,E,near atoms,torsion,count\n1,1,2,-157.1,5,1\n2,2,3,-157.2,6,2\n3,4,5,-157.3,7,3\n",
+    );
+    const { body } = await add(id, file, { preview: "true" });
+    const like = body.columns.filter(({ looksLikeEnergy }: { looksLikeEnergy: boolean }) => looksLikeEnergy);
+    expect(like.map(({ name, kind }: { name: string; kind: string }) => [name, kind])).toEqual([
+      ["energy", "property"],
+      ["E", "property"],
+      ["near atoms", "property"],
+    ]);
+    expect(body.messages).toContainEqual(
+      expect.objectContaining({
+        ...{ code: "C06", severity: "remark", column: 2 },
+        message: '"energy" looks like energies and names no unit; it is taken as a property.',
+      }),
+    );
+    const said = JSON.stringify([
+      { column: 2, kind: "property" },
+      { column: 3, kind: "energy" },
+    ]);
+    const answered = (await add(id, file, { preview: "true", columns: said })).body;
+    expect(answered.columns.map(({ looksLikeEnergy: one }: { looksLikeEnergy: boolean }) => one)).toEqual([
+      ...[false, false, true, false, false],
+    ]);
+    expect(answered.questions.map((q: { id: string }) => q.id)).toEqual(["energyUnit"]);
+    expect((await add(id, table("frame,energy\n1,1\n2,2\n3,4\n"))).body.columns).toMatchObject([
+      { name: "energy", kind: "property", unit: null },
+    ]);
+  });
+
   it("says in a preview what a replacement of another kind would be refused with", async () => {
     const { id } = await ensemble(3);
     await add(id, table("frame,part [kcal/mol]\n1,0\n2,1\n3,2\n"), { kind: "property" });

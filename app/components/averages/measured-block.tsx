@@ -139,11 +139,10 @@ export function MeasuredBlock({
           </Note>
         ) : null}
         <MeasuredPaste
-          label="A list to take in, an atom and a value a line"
+          what="atom"
           placeholder={"C1 77.30\nH4 1.21"}
-          expected="an atom of the table and a number with a decimal point: C4 77.3"
-          onTake={(text) => {
-            const { values, unread } = readPasted(text, groupOf);
+          onTake={(text, commas) => {
+            const { values, unread } = readPasted(text, groupOf, commas);
             if (values.size > 0) change({ values: new Map([...state.values, ...values]) });
             return unread;
           }}

@@ -1,53 +1,67 @@
 import { type FormEvent, useId, useState } from "react";
-import { SubmitButton } from "~/components/ui/button";
+import { Button, SubmitButton } from "~/components/ui/button";
 import { Field, frameClass } from "~/components/ui/field";
+import { type PastedValues, unreadWords } from "~/lib/averages/pasted";
+
+type Unread = PastedValues<unknown>["unread"];
 
 /** Measured values as a pasted list. */
 export function MeasuredPaste({
-  label,
+  what,
   placeholder,
-  expected,
   onTake,
 }: {
-  label: string;
+  /** What a line names: "atom", "property". */
+  what: string;
   placeholder: string;
-  /** What a line has to be: "an atom of the table and a number with a decimal point: C4 77.3". */
-  expected: string;
-  /** Takes what the text says, and returns the lines that say nothing. */
-  onTake: (text: string) => string[];
+  /** Takes what the text says, and returns the lines that were not taken. */
+  onTake: (text: string, commas: boolean) => Unread;
 }) {
   const id = useId();
   const [text, setText] = useState("");
-  const [said, setSaid] = useState<string | null>(null);
-  const take = (event: FormEvent) => {
-    event.preventDefault();
-    const unread = onTake(text);
-    setSaid(
-      unread.length > 0
-        ? `Not read: ${unread.slice(0, 3).join("; ")}${unread.length > 3 ? ` and ${unread.length - 3} more` : ""}. A line is ${expected}.`
-        : null,
-    );
-    if (unread.length === 0) setText("");
+  const [unread, setUnread] = useState<Unread>([]);
+  const take = (commas: boolean) => {
+    const left = onTake(text, commas);
+    setUnread(left);
+    // What was taken is gone from the list; what was not stays to be put right.
+    setText(left.map(({ line }) => line).join("\n"));
   };
+  const wrong = unread.length > 0;
   return (
-    <form onSubmit={take} className="grid max-w-read gap-3 print:hidden">
-      <Field id={id} label={label} error={said ?? undefined}>
+    <form
+      onSubmit={(event: FormEvent) => {
+        event.preventDefault();
+        take(false);
+      }}
+      className="grid max-w-read gap-3 print:hidden"
+    >
+      <Field
+        id={id}
+        label={`A list to take in, ${what === "atom" ? "an" : "a"} ${what} and a value a line`}
+        error={wrong ? `Not read. ${unreadWords(unread, what)}` : undefined}
+      >
         <textarea
           id={id}
           rows={3}
           value={text}
           placeholder={placeholder}
           spellCheck={false}
-          aria-invalid={said ? true : undefined}
-          aria-describedby={said ? `${id}-error` : undefined}
-          className={`figures ${frameClass(said !== null)} h-auto! w-full py-2`}
-          onChange={(event) => setText(event.currentTarget.value)}
+          aria-invalid={wrong ? true : undefined}
+          aria-describedby={wrong ? `${id}-error` : undefined}
+          className={`figures ${frameClass(wrong)} h-auto! w-full py-2`}
+          onChange={(event) => {
+            setText(event.currentTarget.value);
+            setUnread([]);
+          }}
         />
       </Field>
-      <div>
+      <div className="flex flex-wrap gap-3">
         <SubmitButton kind="plain" disabled={text.trim() === ""}>
           Take the values
         </SubmitButton>
+        {unread.some(({ why }) => why === "comma") ? (
+          <Button onClick={() => take(true)}>Read commas as decimal commas</Button>
+        ) : null}
       </div>
     </form>
   );

@@ -82,11 +82,10 @@ export function MeasuredProperties({
           />
         ) : null}
         <MeasuredPaste
-          label="A list to take in, a property and a value a line"
+          what="property"
           placeholder={`${names[0] ?? "3J"} 7.20`}
-          expected={`the name of a property and a number with a decimal point: ${names[0] ?? "3J"} 7.2`}
-          onTake={(text) => {
-            const { values: read, unread } = readPastedProperties(text, names);
+          onTake={(text, commas) => {
+            const { values: read, unread } = readPastedProperties(text, names, commas);
             if (read.size > 0) set(new Map([...values, ...read]));
             return unread;
           }}

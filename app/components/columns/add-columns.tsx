@@ -14,6 +14,8 @@ import { FirstRows, TakenAs } from "./preview-tables";
 import { type AddedFile, useAddedFile } from "./use-added-file";
 
 const SHOWN_MESSAGES = 12;
+/** A header names an atom that is not there, or another element. */
+const NO_SUCH_ATOM = "C15";
 
 /** A level or a property table, from the file to the columns that are kept: nothing before it is looked at. */
 export function AddColumns({ ensembleId }: { ensembleId: string }) {
@@ -43,7 +45,18 @@ export function AddColumns({ ensembleId }: { ensembleId: string }) {
         </p>
       )}
       {refused ? (
-        <StatePanel tone="danger" title={refused.title} className="mt-4">
+        <StatePanel
+          tone="danger"
+          title={refused.title}
+          className="mt-4"
+          actions={
+            refused.code === NO_SUCH_ATOM && added.fields.perAtom !== "plain" ? (
+              <Button onClick={() => added.answer({ perAtom: "plain" })}>
+                Take such names as plain columns
+              </Button>
+            ) : undefined
+          }
+        >
           <p role="alert">{refused.detail}</p>
         </StatePanel>
       ) : null}
@@ -58,19 +71,28 @@ function Looked({ added, preview }: { added: AddedFile; preview: ColumnsPreview 
   const taken = preview.columns.filter(({ exists }) => exists);
   const replaces = fields.replace === "true";
   const clashes = replaces ? taken.flatMap(({ conflict }) => (conflict === null ? [] : [conflict])) : [];
-  const open = preview.questions.length;
+  const like = preview.columns.flatMap(({ column, name, looksLikeEnergy }) =>
+    looksLikeEnergy && column !== null ? [{ column, name }] : [],
+  );
+  const open = preview.questions.length + like.length;
   return (
     <>
       <p className="mt-2 max-w-read">{preview.match.text}.</p>
       <AnsweredPoints fields={fields} onTakeBack={(id) => added.answer({ [id]: "" })} />
-      <OpenPoints questions={preview.questions} busy={busy !== null} onAnswer={added.answer} />
+      <OpenPoints
+        questions={preview.questions}
+        like={like}
+        busy={busy !== null}
+        onAnswer={added.answer}
+        onKind={(column, kind) => added.decide({ column, kind })}
+      />
       <FirstRows preview={preview} />
       {preview.type === "structures" ? <HowMatched added={added} /> : null}
       {preview.columns.length > 0 ? (
         <TakenAs preview={preview} choices={added.choices} onDecide={added.decide} />
       ) : null}
       {energies ? <EnergyFacts added={added} /> : null}
-      <Messages preview={preview} />
+      <Messages preview={preview} asked={like.map(({ column }) => column)} />
       {taken.length > 0 ? (
         <Checkbox className="mt-6 max-w-read" checked={replaces} onChange={() => added.putInPlace(!replaces)}>
           Put these numbers in the place of {taken.map(({ name }) => `“${name}”`).join(", ")}, which{" "}
@@ -163,9 +185,13 @@ function EnergyFacts({ added }: { added: AddedFile }) {
   );
 }
 
-function Messages({ preview }: { preview: ColumnsPreview }) {
-  // Frames without a row are counted above: a line each would hide everything else.
-  const messages = preview.messages.filter(({ code, frame }) => code !== "C07" || frame === undefined);
+function Messages({ preview, asked }: { preview: ColumnsPreview; asked: readonly number[] }) {
+  // Frames without a row are counted above: a line each would hide everything else. What is asked needs no remark.
+  const messages = preview.messages.filter(
+    ({ code, frame, column }) =>
+      (code !== "C07" || frame === undefined) &&
+      !(column !== undefined && code === "C06" && asked.includes(column)),
+  );
   if (messages.length === 0) return null;
   const more = messages.length - SHOWN_MESSAGES;
   return (

@@ -11,26 +11,54 @@ type Question = ColumnsPreview["questions"][number];
 /** What the file leaves open, one card a question; nothing is kept before they are answered. */
 export function OpenPoints({
   questions,
+  like,
   busy,
   onAnswer,
+  onKind,
 }: {
   questions: readonly Question[];
+  /** Columns without a unit that look like energies. */
+  like: readonly { column: number; name: string }[];
   busy: boolean;
   onAnswer: (fields: Record<string, string>) => void;
+  onKind: (column: number, kind: "energy" | "property") => void;
 }) {
+  const all = questions.length + like.length;
   return (
     <div className="mt-5 grid gap-5">
       {questions.map((question, k) => (
         <PointCard
           key={question.id}
           question={question}
-          count={`Question ${k + 1} of ${questions.length}`}
+          count={`Question ${k + 1} of ${all}`}
           busy={busy}
           onAnswer={(option) => onAnswer({ [question.id]: option })}
         />
       ))}
+      {like.map(({ column, name }, k) => (
+        <PointCard
+          key={`kind-${column}`}
+          question={kindQuestion(column, name)}
+          count={`Question ${questions.length + k + 1} of ${all}`}
+          busy={busy}
+          onAnswer={(option) => onKind(column, option === "energy" ? "energy" : "property")}
+        />
+      ))}
     </div>
   );
+}
+
+function kindQuestion(column: number, name: string): Question {
+  return {
+    id: `kind-${column}`,
+    code: "kind",
+    text: `Is “${name}” an energy?`,
+    reason: "It looks like one, and its header names no unit.",
+    options: [
+      { id: "energy", text: "An energy: a level", detail: "Its unit is asked next.", proposed: true },
+      { id: "property", text: "A property without a unit" },
+    ],
+  };
 }
 
 function PointCard({

@@ -20,6 +20,8 @@ export interface ColumnChoiceField {
 export interface Refused {
   title: string;
   detail: string;
+  /** Row of the formats that refuses, where it is one. */
+  code?: string;
 }
 
 export type ColumnsAnswer<Body> = { ok: true; body: Body } | { ok: false; refused: Refused };
@@ -43,8 +45,8 @@ async function send<Body>(form: ColumnsForm, extra: Record<string, string>): Pro
     });
     const answer: unknown = await response.json();
     if (response.ok) return { ok: true, body: answer as Body };
-    const { title, detail } = answer as { title?: string; detail?: string };
-    return { ok: false, refused: { title: title ?? LOST.title, detail: detail ?? LOST.detail } };
+    const { title, detail, code } = answer as { title?: string; detail?: string; code?: string };
+    return { ok: false, refused: { title: title ?? LOST.title, detail: detail ?? LOST.detail, code } };
   } catch {
     return { ok: false, refused: LOST };
   }

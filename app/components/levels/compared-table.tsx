@@ -148,6 +148,7 @@ export function ComparedTable({
                 >
                   {point.name}
                 </button>
+                <span className="block text-xs text-ink-3">frame {formatCount(point.frame)}</span>
               </Td>
               <Td align="right">{formatEnergy(point.level)}</Td>
               <Td align="right">{formatEnergy(point.reference)}</Td>

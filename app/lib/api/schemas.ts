@@ -432,6 +432,9 @@ export const columnsPreviewSchema = z
         atom: z.number().int().nullable(),
         quantity: z.string().nullable(),
         count: z.number().int(),
+        looksLikeEnergy: z
+          .boolean()
+          .meta({ description: "A property that is probably an energy, and nobody has said which." }),
         exists: z.boolean().meta({ description: "A column of this name is there already." }),
         conflict: z
           .string()

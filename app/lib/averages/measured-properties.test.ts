@@ -8,6 +8,7 @@ import {
   readPastedProperties,
   writeMeasuredProperties,
 } from "./measured-properties.ts";
+import { unreadWords } from "./pasted.ts";
 import { asTyped } from "./words.ts";
 
 const figure = (name: string, unit: string | null, average: number | null, rule = "linear") => ({
@@ -62,12 +63,25 @@ describe("a pasted list", () => {
 
   it("gives back the lines that name nothing, have no value, a decimal comma or more than one meaning", () => {
     const text = "dipol 1\n3J H4-H5\nr 1,5\nr\nR 2";
-    expect(readPastedProperties(text, names)).toEqual({
+    const read = readPastedProperties(text, names);
+    expect(read).toEqual({
       values: new Map([["r", 2]]),
-      unread: ["dipol 1", "3J H4-H5", "r 1,5", "r"],
+      unread: [
+        { line: "dipol 1", why: "name" },
+        { line: "3J H4-H5", why: "number" },
+        { line: "r 1,5", why: "comma" },
+        { line: "r", why: "number" },
+      ],
     });
+    expect(unreadWords(read.unread, "property")).toBe(
+      "A comma in the number: r 1,5. No such property in the table: dipol 1. No property and number: 3J H4-H5; r.",
+    );
+    expect(readPastedProperties("r 1,5", names, true).values).toEqual(new Map([["r", 1.5]]));
+    expect(readPastedProperties("r 1,234,5", names, true).unread).toEqual([
+      { line: "r 1,234,5", why: "number" },
+    ]);
     expect(readPastedProperties("A 1", ["a", "A "]).values).toEqual(new Map([["a", 1]]));
-    expect(readPastedProperties("ab 1", ["AB", "Ab"]).unread).toEqual(["ab 1"]);
+    expect(readPastedProperties("ab 1", ["AB", "Ab"]).unread).toEqual([{ line: "ab 1", why: "name" }]);
   });
 });
 

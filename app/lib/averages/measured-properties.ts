@@ -1,6 +1,7 @@
 import { turnOf, wrapTurn } from "./angle.ts";
 import type { MeasuredProperties } from "./averaging.ts";
 import { MOST_MEASURED } from "./measured.ts";
+import { type PastedValues, readLines } from "./pasted.ts";
 import { type Agreement, againstMeasured } from "./shielding-fit.ts";
 
 /** Measured values of properties of the whole molecule (couplings, distances, a dipole moment) by the name of their column. */
@@ -55,24 +56,24 @@ const decode = (name: string) => name.replaceAll("%7E", "~").replaceAll("%25", "
  * Measured values out of pasted lines: the name of a property, then the value. Letter case and spaces at the ends do not
  * matter where one property alone is meant.
  *
+ * @param commas true where somebody said that commas are decimal ones
  * @returns values by the name of the column, and the lines that say no such thing
  * @example readPastedProperties("3J H4-H5 7.2\ndipole; 1.85", ["3J H4-H5", "dipole"]).values
  */
 export function readPastedProperties(
   text: string,
   names: readonly string[],
-): { values: Map<string, number>; unread: string[] } {
-  const values = new Map<string, number>();
-  const unread: string[] = [];
-  for (const line of text.split(/\r?\n/)) {
-    if (line.trim() === "") continue;
-    const said = /^(.*?)[\s;=:]+(\S+)$/.exec(line.trim());
-    const value = numberOf(said?.[2]?.replace("\u2212", "-"));
-    const name = nameMeant((said?.[1] ?? "").trim(), names);
-    if (value === null || name === null) unread.push(line.trim());
-    else values.set(name, value);
-  }
-  return { values, unread };
+  commas = false,
+): PastedValues<string> {
+  return readLines(
+    text,
+    (line) => {
+      const said = /^(.*?)[\s;=:]+(\S+)$/.exec(line);
+      return { key: nameMeant((said?.[1] ?? "").trim(), names), number: said?.[2] };
+    },
+    numberOf,
+    commas,
+  );
 }
 
 function nameMeant(said: string, names: readonly string[]): string | null {

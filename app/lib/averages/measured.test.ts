@@ -176,7 +176,10 @@ describe("measured values in an address", () => {
         [1, 77.3],
         [4, 1.21],
       ]),
-      unread: ["C9 3", "hello"],
+      unread: [
+        { line: "C9 3", why: "name" },
+        { line: "hello", why: "number" },
+      ],
     });
     expect(readPasted("H4, H5: 1.2\n1 = \u22120.5", groups).values).toEqual(
       new Map([
@@ -184,7 +187,11 @@ describe("measured values in an address", () => {
         [1, -0.5],
       ]),
     );
-    expect(readPasted("C1 77,3", groups)).toEqual({ values: new Map(), unread: ["C1 77,3"] });
+    expect(readPasted("C1 77,3", groups)).toEqual({
+      values: new Map(),
+      unread: [{ line: "C1 77,3", why: "comma" }],
+    });
+    expect(readPasted("C1 77,3", groups, true).values).toEqual(new Map([[1, 77.3]]));
   });
 });
 

@@ -1,5 +1,6 @@
 import { fixed, withUnit } from "../format.ts";
 import type { MeasuredRecord } from "./averaging.ts";
+import { type PastedValues, readLines } from "./pasted.ts";
 import { type Agreement, againstMeasured, fitShieldings, type Line, shiftOf } from "./shielding-fit.ts";
 
 /** Measured values and scaling of one per-atom quantity, as the ensemble keeps them or a draft in the address has them. */
@@ -250,26 +251,26 @@ const decode = (name: string) => name.replaceAll("%7E", "~").replaceAll("%25", "
  * Measured values out of pasted lines: an atom ("C4", "4") or several of a group, then the value.
  *
  * @param groups first atom (from 1) of the group of each atom
+ * @param commas true where somebody said that commas are decimal ones
  * @returns values by the first atom of their group, and the lines that say no such thing
  * @example readPasted("C1 77.3\nC4\t20.1", groups).values // { 1 => 77.3, 4 => 20.1 }
  */
 export function readPasted(
   text: string,
   groups: ReadonlyMap<number, number>,
-): { values: Map<number, number>; unread: string[] } {
-  const values = new Map<number, number>();
-  const unread: string[] = [];
-  for (const line of text.split(/\r?\n/)) {
-    if (line.trim() === "") continue;
-    // A comma between digits may be a decimal one: it separates nothing, and such a line is not read.
-    const parts = line.split(/[\s;=:]+/).flatMap((part) => part.replace(/,$/, "") || []);
-    const value = numberOf(parts.at(-1)?.replace("\u2212", "-"));
-    const atom = Number(/^[A-Za-z]{0,2}_?(\d{1,5})$/.exec(parts[0] ?? "")?.[1] ?? Number.NaN);
-    const group = groups.get(atom);
-    if (parts.length < 2 || value === null || group === undefined) unread.push(line.trim());
-    else values.set(group, value);
-  }
-  return { values, unread };
+  commas = false,
+): PastedValues<number> {
+  return readLines(
+    text,
+    (line) => {
+      // A comma between digits may be a decimal one: it separates nothing.
+      const parts = line.split(/[\s;=:]+/).flatMap((part) => part.replace(/,$/, "") || []);
+      const atom = Number(/^[A-Za-z]{0,2}_?(\d{1,5})$/.exec(parts[0] ?? "")?.[1] ?? Number.NaN);
+      return { key: groups.get(atom) ?? null, number: parts.length < 2 ? undefined : parts.at(-1) };
+    },
+    numberOf,
+    commas,
+  );
 }
 
 /** A group of equivalent atoms with its average, and what was measured. */

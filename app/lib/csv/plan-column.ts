@@ -1,6 +1,7 @@
 import { initialRule, ruleAgainstUnit } from "../averages/rule.ts";
 import { symbolOf } from "../chem/elements.ts";
 import type { ColumnData } from "../column-data.ts";
+import { looksLikeLevel } from "../columns-view.ts";
 import { unitByAtoms } from "../intake/energy-unit-finding.ts";
 import { IntakeRejection } from "../intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
@@ -58,6 +59,8 @@ export interface PlannedColumn {
   rule: Rule | null;
   atom: number | null;
   quantity: string | null;
+  /** A property without a unit that by name or size is probably an energy, and nobody has said which. */
+  looksLikeEnergy: boolean;
   data: ColumnData;
   /** Frames with a value. */
   count: number;
@@ -225,6 +228,7 @@ export function draftColumn(
     rule: null,
     atom: null,
     quantity: null,
+    looksLikeEnergy: false,
     raw,
     messages: [],
     questions: [],
@@ -244,7 +248,32 @@ export function draftColumn(
   }
   if (kind === "energy") settleEnergy(draft, unit, answers, context);
   else settleProperty(draft, unit, answers, choice, context);
+  if (stated === undefined && looksLikeEnergy(draft, context.elements)) {
+    draft.looksLikeEnergy = true;
+    draft.messages.push(likeEnergy(draft, context));
+  }
   return draft;
+}
+
+/** The one letter that many write for an energy. */
+const LETTERS = /^[EGH]$/i;
+
+/** A whole property without a unit whose name speaks of energies, or whose numbers are near those of the free atoms. */
+function looksLikeEnergy(draft: DraftColumn, elements: ArrayLike<number>): boolean {
+  const { kind, unit, atom, name, raw } = draft;
+  if (kind !== "property" || unit !== null || atom !== null) return false;
+  if (LETTERS.test(name) || looksLikeLevel({ ...{ name, kind, unit, atom }, computed: false })) return true;
+  const range = rangeOf(raw);
+  return range !== null && unitByAtoms(range, elements) !== null;
+}
+
+function likeEnergy({ name, header, column }: DraftColumn, context: PlanContext): IntakeMessage {
+  return {
+    ...{ code: "C06", severity: "remark", file: context.file, line: context.headerLine, column },
+    found: quoteFound(header),
+    message: `"${quoteFound(name)}" looks like energies and names no unit; it is taken as a property.`,
+    hint: `If it is a level, send kind=energy with energyUnit, or write its header as ${quoteFound(name)} [hartree], [kcal/mol], [kJ/mol] or [eV].`,
+  };
 }
 
 function otherUnitStated(
@@ -297,7 +326,7 @@ function settleEnergy(
     id: "energyUnit",
     code: "energy-unit",
     text: `In which unit is "${quoteFound(draft.name)}"?`,
-    reason: `${reason} Write it as name [unit], or state energyUnit.`,
+    reason: `${reason} Where a header says name [unit], nothing is asked.`,
     options: UNITS_ASKED.map((id) => ({
       id,
       text: id,
@@ -388,7 +417,7 @@ function bindAtom(
   const read = readAtom(readHeader(draft.header).name);
   const atom = choice?.atom ?? read?.atom;
   if (atom === undefined) return;
-  const hint = "If the name means no atom, send perAtom=plain.";
+  const hint = "If such names mean no atoms, take them as plain columns (perAtom=plain).";
   const found = quoteFound(draft.header);
   if (atom < 1 || atom > elements.length) {
     const message = `The header names atom ${atom}; the molecule has ${elements.length}.`;

@@ -3,8 +3,9 @@ import { db, inTransaction, type Queryable, type Transaction } from "../../db/cl
 import { isDuplicate } from "../../db/driver-errors.server.ts";
 import { columns } from "../../db/schema.server.ts";
 import { env } from "../../env.server.ts";
-import type { ColumnFields, ColumnsPreview } from "../../lib/api/schemas.ts";
+import { type ColumnFields, type ColumnsPreview, columnFieldsSchema } from "../../lib/api/schemas.ts";
 import { DomainError, type Fault } from "../../lib/errors.ts";
+import { IntakeRejection } from "../../lib/intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../../lib/intake/report.ts";
 import { type Actor, accessEnsemble, type Grant } from "../auth/access.server.ts";
 import { frameStrip } from "../ensembles/accepted-frames.server.ts";
@@ -42,9 +43,30 @@ export type AddedColumns =
   | { kind: "stored"; columns: ListedColumn[]; messages: IntakeMessage[] }
   | { kind: "preview"; preview: ColumnsPreview };
 
-/** What the file would become, by what it is. */
+/**
+ * What the file would become, by what it is. Where it is open how numbers are written, they are read as is proposed: read
+ * in another way most cells would be no numbers, and the remarks on what is missing would be wrong.
+ */
 async function planFile(file: ReceivedFile, target: TargetEnsemble): Promise<FilePlan> {
-  const { name, fields } = file;
+  const plan = await readFile(file, target, file.fields);
+  const open = plan.questions.find(({ id }) => id === "numbers");
+  if (open === undefined) return plan;
+  const style = columnFieldsSchema.shape.numbers.safeParse(open.options.find(({ proposed }) => proposed)?.id);
+  if (!style.success || style.data === undefined) {
+    return { ...plan, messages: plan.messages.filter(({ code }) => !code.startsWith("E")) };
+  }
+  try {
+    const read = await readFile(file, target, { ...file.fields, numbers: style.data });
+    return { ...read, questions: [open, ...read.questions] };
+  } catch (error) {
+    // What is wrong by the proposed reading may be right by another: the question stays.
+    if (error instanceof IntakeRejection) return plan;
+    throw error;
+  }
+}
+
+async function readFile(file: ReceivedFile, target: TargetEnsemble, fields: ColumnFields): Promise<FilePlan> {
+  const { name } = file;
   const remarks: IntakeMessage[] = [];
   const remark = (message: IntakeMessage) => remarks.push(message);
   const opened = await openFile(readSource(file.sourceId), {
@@ -104,6 +126,7 @@ async function previewOf(name: string, plan: FilePlan, target: TargetEnsemble): 
       atom: column.atom ?? null,
       quantity: column.quantity ?? null,
       count: column.data.present.reduce((sum, flag) => sum + flag, 0),
+      looksLikeEnergy: column.looksLikeEnergy ?? false,
       exists: kinds.has(column.name),
       conflict: clash(column),
     })),
@@ -145,7 +168,7 @@ async function storeAll(tx: Transaction, at: At, file: ReceivedFile, plan: FileP
   if (standing !== null) return { ids: standing, made: false };
   const [sourceId] = await file.store.publish(tx);
   const stored: { id: string; name: string; replaced: boolean }[] = [];
-  for (const { column: _, header: __, why: ___, ...column } of plan.columns) {
+  for (const { column: _, header: __, why: ___, looksLikeEnergy: ____, ...column } of plan.columns) {
     const made = await storeColumn(tx, at, column, { replace: file.fields.replace });
     await tx
       .update(columns)

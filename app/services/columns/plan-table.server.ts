@@ -81,6 +81,7 @@ export async function planTableFile(
         column: column.column,
         header: column.header,
         why: column.why,
+        looksLikeEnergy: column.looksLikeEnergy,
         name: column.name,
         kind: column.kind,
         unit: column.unit,

@@ -8,6 +8,8 @@ export interface PlannedToStore extends ColumnToStore {
   column: number | null;
   header: string;
   why: string;
+  /** A property that is probably an energy, and nobody has said which. */
+  looksLikeEnergy?: boolean;
 }
 
 /** What a file would become: a table or structures, the same from here on. */
