@@ -60,7 +60,7 @@ describe("a table", () => {
   });
 
   it("gives back every number and label that was written", () => {
-    const cell = fc.double({ noNaN: true, noDefaultInfinity: true });
+    const cell = fc.double({ noNaN: true, min: -1e50, max: 1e50 });
     const label = fc.string({ minLength: 1, maxLength: 12 }).filter((text) => {
       // What a spreadsheet trims away, or takes for a missing value, is no label here.
       return text === text.trim() && !/[\0]/.test(text) && text.trim() !== "";

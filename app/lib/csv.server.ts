@@ -228,7 +228,9 @@ export class TableReader {
       code: "C03",
       line: first.line,
       message: `Row ${first.row} has ${first.fields} fields, the header has ${table.header.length}.`,
-      hint: "Are there decimal commas in a table separated by commas? Write decimal points, or separate by semicolons.",
+      hint: table.header[0]?.trimStart().startsWith("#")
+        ? "Is the first line a comment? Remove it: the first line names the columns."
+        : "Are there decimal commas in a table separated by commas? Write decimal points, or separate by semicolons.",
     });
   }
 

@@ -347,6 +347,46 @@ describe("a table", () => {
     ]);
   });
 
+  it("takes no number that no molecule has: what is computed from two of them must not overflow", async () => {
+    const { id } = await ensemble(4);
+    const file = table(
+      "frame,both [kcal/mol],e306 [hartree],r [Å]\n1,1e308,1e306,1e-300\n2,-1e308,0,1\n3,1,1,1\n4,2,2,1\n",
+    );
+    const { status, body } = await add(id, file);
+    expect(status).toBe(201);
+    expect(body.columns.map(({ count }: { count: number }) => count)).toEqual([2, 3, 4]);
+    expect(body.messages).toContainEqual(
+      expect.objectContaining({
+        ...{ code: "C14", severity: "remark", line: 2, column: 2, found: "1e308" },
+        message: 'Row 2 has a number out of range in "both"; the value counts as missing.',
+        hint: "Numbers up to 1e50 are taken.",
+      }),
+    );
+    const { result, id: siftId } = await sifted(token, id, { level: "e306" });
+    expect(result!.withoutEnergy).toEqual([1]);
+    const get = (path: string) => call(`/api/v1${path}`, { headers: { authorization: `Bearer ${token}` } });
+    for (const path of [
+      `/ensembles/${id}/comparison?level=both&reference=MMFF94`,
+      `/ensembles/${id}/comparison?level=e306&reference=both&align=own-minimum`,
+      `/sifts/${siftId}/populations?level=both`,
+      `/sifts/${siftId}/averages.csv?level=both&sigma=0.5`,
+    ])
+      expect((await get(path)).status, path).toBe(200);
+    const none = await add(id, table("frame,p\n1,nan\n2,1e400\n3,\n"));
+    expect(none.body).toMatchObject({ status: 422, errors: [{ line: 3 }] });
+    expect(none.body.detail).toContain("Numbers up to 1e50 are taken.");
+  });
+
+  it("says how angles that never turn are averaged, unless a rule was stated", async () => {
+    const { id } = await ensemble(3);
+    const angles = (name: string) => table(`frame,${name} [°]\n1,112.9\n2,113.4\n3,115\n`);
+    const { body } = await add(id, angles("CCC angle"));
+    expect(body.messages).toMatchObject([{ code: "C06", hint: expect.stringContaining("rule=linear") }]);
+    expect((await add(id, angles("other angle"), { rule: "linear" })).body.messages).toEqual([]);
+    expect((await add(id, angles("third"), { rule: "circular" })).body.messages).toEqual([]);
+    expect((await add(id, table("frame,t [°]\n1,-60\n2,60\n3,180\n"))).body.messages).toEqual([]);
+  });
+
   it("says in a preview what a replacement of another kind would be refused with", async () => {
     const { id } = await ensemble(3);
     await add(id, table("frame,part [kcal/mol]\n1,0\n2,1\n3,2\n"), { kind: "property" });

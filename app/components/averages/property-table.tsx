@@ -13,6 +13,7 @@ import type { Average } from "~/lib/averages/average";
 import { fromDefinition } from "~/lib/averages/observable";
 import { couplingWords, observableWords } from "~/lib/averages/observable-words";
 import type { PropertyValues } from "~/lib/averages/property-set";
+import { type AverageRule, possibleRules } from "~/lib/averages/rule";
 import { shownAveragesCsv } from "~/lib/averages/shown-csv";
 import { coveredShare, digitsFor } from "~/lib/averages/words";
 import { ABSENT, fixed, formatCount, formatEnergy, formatTemperature, withUnit } from "~/lib/format";
@@ -192,6 +193,7 @@ function PropertyRow({
   const coupling = useCoupling(property);
   const digits = digitsFor(property.unit, average.value);
   const origin = originWords(property);
+  const proposed = proposedRule(property, moments.rule);
   const bothHands = moments.mirrored.some((flag) => flag === 1);
   const rule = (
     <>
@@ -216,6 +218,11 @@ function PropertyRow({
             {origin === "" ? "" : "; "}
           </span>
           <span className="[overflow-wrap:anywhere]">{origin}</span>
+          {proposed === null ? null : (
+            <>
+              {origin === "" ? "" : "; "}proposed: <RuleName rule={proposed} />
+            </>
+          )}
           {property.unit ? <span className="sm:hidden">, in {property.unit}</span> : null}
         </span>
       </Td>
@@ -285,6 +292,12 @@ function PropertyRow({
       <Td className="text-ink-2 max-sm:hidden">{property.unit ?? ""}</Td>
     </Tr>
   );
+}
+
+/** The rule that name and unit speak for, where it is another than the one in force; what was picked leaves no doubt. */
+function proposedRule(property: PropertyValues, now: AverageRule): AverageRule | null {
+  const [first] = possibleRules(property);
+  return property.definition !== null || first === undefined || first === now ? null : first;
 }
 
 function Uncertainty({

@@ -107,8 +107,12 @@ function fill(made: Moments, i: number, value: number, bothHands: boolean): void
       return;
     case "r-6":
     case "r-3":
-      if (!(value > 0)) made.zeroDistance = true;
-      else made.first[i] = made.rule === "r-6" ? value ** -6 : value ** -3;
+      made.first[i] = value > 0 ? value ** (made.rule === "r-6" ? -6 : -3) : Number.POSITIVE_INFINITY;
+      // A distance so small that its power is beyond any number is none.
+      if (made.first[i] === Number.POSITIVE_INFINITY) {
+        made.first[i] = 0;
+        made.zeroDistance = true;
+      }
       return;
     case "circular": {
       const angle = value / perRadian(made);

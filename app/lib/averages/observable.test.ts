@@ -157,6 +157,8 @@ describe("rules", () => {
     expect(possibleRules({ name: "d_C1_ortho", unit: "Å" })[0]).toBe("r-6");
     expect(possibleRules({ name: "radius_of_gyration", unit: "Å" })[0]).toBe("linear");
     expect(possibleRules({ name: "dipole", unit: "D" })[0]).toBe("rms");
+    expect(possibleRules({ name: "CCC_angle", unit: "°" })[0]).toBe("linear");
+    expect(possibleRules({ name: "dihedral angle", unit: "°" })[0]).toBe("circular");
   });
 });
 

@@ -44,6 +44,19 @@ export function isPseudoscalar(name: string): boolean {
   );
 }
 
+/**
+ * Whether a name is that of an angle between bonds or planes: it keeps its sign in the mirror image and does not go round,
+ * as a torsion does. Names as the trade writes them; common practice, no source.
+ *
+ * @example isBondAngle("C-C-C angle") // true; isBondAngle("torsion angle") // false
+ */
+export function isBondAngle(name: string): boolean {
+  const words = name.replaceAll("_", " ");
+  return (
+    /\b(angle|bend|bending|valence|tilt)\b/i.test(words) && !/torsion|dihedral|phase|azimuth/i.test(words)
+  );
+}
+
 /** True for a unit of length, where r^-6 and r^-3 can be meant. */
 export function isLength(unit: string | null): boolean {
   return unit !== null && columnUnit(unit)?.family === "length";
@@ -69,7 +82,9 @@ export function ruleAgainstUnit(rule: AverageRule, unit: string | null): string 
  */
 export function possibleRules(column: { name: string; unit: string | null }): AverageRule[] {
   if (isPseudoscalar(column.name)) return ["odd", "linear"];
-  if (turnOf(column.unit) !== null) return ["circular", "linear"];
+  if (turnOf(column.unit) !== null) {
+    return isBondAngle(column.name) ? ["linear", "circular"] : ["circular", "linear"];
+  }
   if (isLength(column.unit)) {
     return /gyration|largest|\brg\b/i.test(column.name.replaceAll("_", " "))
       ? ["linear", "r-6", "r-3"]

@@ -1,4 +1,4 @@
-import { numberLength, parseNumber, plainBlanksAndMinus } from "../intake/numbers.ts";
+import { numberLength, parseQuantity, plainBlanksAndMinus } from "../intake/numbers.ts";
 
 /**
  * How numbers are written: with a decimal point or comma, with or without a mark between thousands. `auto` reads
@@ -46,7 +46,7 @@ export function readCell(written: string, style: NumberStyle | null): CellReadin
   if (text.length > MOST_CHARACTERS) return TEXT_CELL;
   const plain = style === null || style === "point" ? text : asPlain(text, style);
   if (plain !== null) {
-    const value = parseNumber(plain);
+    const value = parseQuantity(plain);
     if (value !== null) return { kind: "number", value, unit: null, decimals: decimals(plain) };
     const bound = withUnit(plain);
     if (bound !== null) return bound;
@@ -69,7 +69,7 @@ function withUnit(text: string): CellReading | null {
   const length = numberLength(text, 0);
   if (length === 0 || length === text.length) return null;
   const unit = UNIT_BEHIND.exec(text.slice(length))?.[1];
-  const value = parseNumber(text.slice(0, length));
+  const value = parseQuantity(text.slice(0, length));
   // "5x" is text; a unit is set apart, or is a sign of its own.
   if (unit === undefined || value === null) return null;
   if (!/^[\s%°‰]/.test(text.slice(length))) return null;

@@ -27,13 +27,21 @@ const ROUND = /^(.*\S)(\s*)\(([^()]{1,30})\)$/s;
  */
 export function readHeader(written: string): ColumnHeader {
   const text = written.trim();
-  if (text.length > MOST_CHARACTERS) return plain(text);
+  if (text.length > MOST_CHARACTERS) return longHeader(text);
   const square = SQUARE.exec(text);
   if (square) {
     const [, name = "", unitText = ""] = square;
     return { name, unitText: unitText.trim(), unit: columnUnit(unitText), stated: true };
   }
   return inRound(text) ?? behindSlash(text) ?? behindUnderscore(text) ?? plain(text);
+}
+
+/** Of a header without end only a unit in square brackets at its end is read. */
+function longHeader(text: string): ColumnHeader {
+  const at = text.lastIndexOf("[");
+  if (at < 1 || text.length - at > 60 || !text.endsWith("]")) return plain(text);
+  const unitText = text.slice(at + 1, -1).trim();
+  return { name: text.slice(0, at).trimEnd(), unitText, unit: columnUnit(unitText), stated: true };
 }
 
 function plain(name: string): ColumnHeader {

@@ -1,3 +1,4 @@
+import { turnOf } from "../averages/angle.ts";
 import { initialRule, ruleAgainstUnit } from "../averages/rule.ts";
 import { symbolOf } from "../chem/elements.ts";
 import type { ColumnData } from "../column-data.ts";
@@ -360,6 +361,14 @@ function settleProperty(
   draft.unit = unit.text === null ? null : [...unit.text].slice(0, 40).join("");
   draft.rule = choice?.rule ?? answers.rule ?? initialRule(draft.unit);
   checkRule(draft, choice?.rule !== undefined ? "columns" : "rule", context);
+  if (draft.rule === "circular" && (choice?.rule ?? answers.rule) == null && neverTurns(draft)) {
+    draft.messages.push({
+      ...{ code: "C06", severity: "remark", file: context.file, line: context.headerLine },
+      found: quoteFound(draft.header),
+      message: `"${quoteFound(draft.name)}" is in ${draft.unit} and is averaged as a torsion is: all the way round, and a shape that stands for its mirror image too enters half with either sign.`,
+      hint: "An angle between bonds keeps its sign: send rule=linear, or choose the linear rule at Averages.",
+    });
+  }
   if (unit.text !== null && unit.known === null) {
     draft.messages.push({
       code: "C06",
@@ -371,6 +380,13 @@ function settleProperty(
     });
   }
   bindAtom(draft, unit.known, answers, choice, context);
+}
+
+/** Angles that all lie between 0 and half a turn may be bond angles as well as torsions. */
+function neverTurns({ raw, unit }: DraftColumn): boolean {
+  const range = rangeOf(raw);
+  const half = (turnOf(unit) ?? 360) / 2;
+  return range !== null && range.min >= 0 && range.max <= half;
 }
 
 /** Refuses a rule that the unit speaks against; says how the numbers of an angle without a unit are taken. */

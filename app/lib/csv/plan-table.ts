@@ -4,6 +4,7 @@ import { COMMA_HINT, isCommaNumber } from "../intake/comma-energy.ts";
 import type { EnergyColumn } from "../intake/energy-column.ts";
 import { energyRemarks } from "../intake/energy-remarks.ts";
 import { MessageList } from "../intake/message-list.ts";
+import { isOutOfRange } from "../intake/numbers.ts";
 import { IntakeRejection } from "../intake/reject.ts";
 import type { IntakeMessage, IntakeQuestion } from "../intake/report.ts";
 import { temperatureRemarks } from "../intake/settle-energies.ts";
@@ -131,8 +132,8 @@ function textMessages(draft: DraftColumn, file: string): IntakeMessage[] {
       line,
       column: draft.column,
       found,
-      message: `Row ${row} has text in "${quoteFound(draft.name)}"; the value counts as missing.`,
-      ...(isCommaNumber(found) ? { hint: COMMA_HINT } : {}),
+      message: `Row ${row} has ${isOutOfRange(found) ? "a number out of range" : "text"} in "${quoteFound(draft.name)}"; the value counts as missing.`,
+      ...(isCommaNumber(found) ? { hint: COMMA_HINT } : isOutOfRange(found) ? { hint: RANGE_HINT } : {}),
     }),
   );
   const more = textCount - texts.length;
@@ -142,6 +143,8 @@ function textMessages(draft: DraftColumn, file: string): IntakeMessage[] {
   }
   return all;
 }
+
+const RANGE_HINT = "Numbers up to 1e50 are taken.";
 
 function rowMessages(table: RawTable, match: MatchedRows): IntakeMessage[] {
   const { file } = table;
@@ -229,11 +232,16 @@ function commaIn(table: RawTable, { column }: LeftOut): { found: string; hint: s
 
 function nothingLeft(table: RawTable, leftOut: readonly LeftOut[]): IntakeRejection {
   const why = leftOut[0] === undefined ? "" : ` "${quoteFound(leftOut[0].header)}": ${leftOut[0].why}.`;
+  const text = leftOut[0] && table.columns[leftOut[0].column - 2]?.texts[0];
   return new IntakeRejection({
     code: "C14",
     file: table.file,
+    ...(text ? { line: text.line, found: text.found } : {}),
     message: `No column of the table holds numbers.${why}`,
-    hint: `Its cells are separated by a ${DELIMITER_NAMES[table.delimiter]}; is that right?`,
+    hint:
+      text && isOutOfRange(text.found)
+        ? RANGE_HINT
+        : `Its cells are separated by a ${DELIMITER_NAMES[table.delimiter]}; is that right?`,
     ...(leftOut[0] && commaIn(table, leftOut[0])),
   });
 }

@@ -1,3 +1,5 @@
+import { LARGEST_NUMBER } from "./numbers.ts";
+
 /** A decimal number that is all of a comment line. */
 export interface BareDecimal {
   readonly text: string;
@@ -32,5 +34,5 @@ export function bareDecimal(comment: string): BareDecimal | null {
   if (point <= first || point === to - 1) return null;
   const text = comment.slice(from, to);
   const value = Number(text);
-  return Number.isFinite(value) ? { text, value, decimals: to - point - 1 } : null;
+  return Math.abs(value) <= LARGEST_NUMBER ? { text, value, decimals: to - point - 1 } : null;
 }

@@ -1,6 +1,6 @@
 import type { EnergyUnit } from "../units.ts";
 import { parseEnergyUnit } from "./energy-units.ts";
-import { numberLength, parseNumber, plainBlanksAndMinus } from "./numbers.ts";
+import { numberLength, parseQuantity, plainBlanksAndMinus } from "./numbers.ts";
 
 /** One number of a comment line. */
 export interface CommentNumber {
@@ -183,7 +183,7 @@ function readWhole(word: string): { text: string; value: number | null; unit: En
   const text = withoutTail(word.replace(/^[([{<'"]+/, ""), ")]}>,;'\"");
   const length = numberLength(text, 0);
   if (length === 0) return null;
-  const value = parseNumber(text.slice(0, length));
+  const value = parseQuantity(text.slice(0, length));
   if (length === text.length) return { text, value, unit: null };
   const unit = text.length - length < 2 ? null : parseEnergyUnit(text.slice(length));
   return unit && { text: text.slice(0, length), value, unit };

@@ -1,7 +1,7 @@
 import { quoteFound } from "../text/escape.ts";
 import { type EnergyUnit, GAS_CONSTANT_J, kcalPer, kjPer, STANDARD_TEMPERATURE_K } from "../units.ts";
 import type { EnergyColumn, EnergyRow } from "./energy-column.ts";
-import { readNumber } from "./numbers.ts";
+import { isOutOfRange, readNumber } from "./numbers.ts";
 import type { IntakeMessage } from "./report.ts";
 
 /** Spreads of one molecule's conformers outside of these bounds ask for a second look (methods page, section 1). */
@@ -63,9 +63,9 @@ export function unreadableEnergy({ frame, file, line, textLine }: EnergyRow, tex
   const found = quoteFound(text);
   const place = { file, frame, line: textLine ?? line + 1, found };
   const { fault } = readNumber(text);
-  if (fault === "not-finite" && /\d/.test(text)) {
+  if (isOutOfRange(text)) {
     const message = "The energy is a number out of range.";
-    return remark("E10", { ...place, message, hint: `Numbers end at about 1.8e308. ${LATER}` });
+    return remark("E10", { ...place, message, hint: `Numbers up to 1e50 are taken. ${LATER}` });
   }
   const message = "The energy is not a number.";
   if (fault !== "decimal-comma") return remark("E10", { ...place, message, hint: LATER });

@@ -1,4 +1,4 @@
-import { parseNumber } from "./numbers.ts";
+import { parseQuantity } from "./numbers.ts";
 
 /** Value of a key in an extended comment: numbers and logicals typed, arrays nested at most twice (row X32). */
 export type ExtendedValue = number | boolean | string | readonly ExtendedValue[];
@@ -160,7 +160,7 @@ function typed(piece: Piece): ExtendedValue {
 
 /** Integer, real, logical, then text. `TRuE` and other mixes are text (row X34). */
 function scalar(text: string): number | boolean | string {
-  const value = parseNumber(text);
+  const value = parseQuantity(text);
   if (value !== null) return value;
   if (/^(?:T|true|True|TRUE)$/.test(text)) return true;
   if (/^(?:F|false|False|FALSE)$/.test(text)) return false;

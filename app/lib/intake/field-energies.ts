@@ -3,7 +3,7 @@ import type { CommentNumber, KeyedText, ScannedComment } from "./comment-numbers
 import type { ExtractedEnergy } from "./energy-column.ts";
 import { parseEnergyUnit } from "./energy-units.ts";
 import { namesEnergy } from "./energy-words.ts";
-import { numberLength, parseNumber, plainBlanksAndMinus } from "./numbers.ts";
+import { numberLength, parseQuantity, plainBlanksAndMinus } from "./numbers.ts";
 
 /** Words behind a number beyond which a value is a sentence. */
 const MOST_WORDS = 3;
@@ -92,7 +92,7 @@ function readEndedNumber(written: string): FieldNumber | null {
   if (written.length > KEPT) return null;
   const text = plainBlanksAndMinus(written);
   const length = numberLength(text, 0);
-  const value = parseNumber(text.slice(0, length));
+  const value = parseQuantity(text.slice(0, length));
   if (value === null) return null;
   const rest = text.slice(length);
   const words = rest.split(/\s+/).filter((word) => word !== "");

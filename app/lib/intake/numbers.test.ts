@@ -1,6 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
-import { decimalQuotient, parseNumber, plainBlanksAndMinus, readNumber } from "./numbers.ts";
+import { decimalQuotient, parseNumber, parseQuantity, plainBlanksAndMinus, readNumber } from "./numbers.ts";
 
 const digits = (most: number) => fc.string({ unit: fc.constantFrom(..."0123456789"), maxLength: most });
 const decimal = fc
@@ -23,6 +23,7 @@ describe("a whole token or no number", () => {
       fc.property(decimal, (text) => {
         const value = Number(text.replace("D", "e"));
         expect(parseNumber(text)).toBe(Number.isFinite(value) ? value : null);
+        expect(parseQuantity(text)).toBe(Math.abs(value) <= 1e50 ? value : null);
       }),
       { seed: 11, numRuns: 3000 },
     );

@@ -76,6 +76,12 @@ export function numberLength(text: string, from: number): number {
 }
 
 /**
+ * No quantity of a molecule is larger: numbers beyond are out of range, so that nothing computed from two of them (a
+ * unit's factor, a difference, a product of squares, a sixth power) can overflow. Our own choice.
+ */
+export const LARGEST_NUMBER = 1e50;
+
+/**
  * The double of a whole token, exactly as `Number` rounds it; null where the token is no number or overflows.
  *
  * @example parseNumber("1.5D-3") // 0.0015
@@ -87,6 +93,23 @@ export function parseNumber(token: string): number | null {
   let value = Number(token);
   if (Number.isNaN(value)) value = Number(token.replace(/[dD]/, "e"));
   return Number.isFinite(value) ? value : null;
+}
+
+/**
+ * `parseNumber` of an energy or a property: null beyond `LARGEST_NUMBER` too.
+ *
+ * @example parseQuantity("1e51") // null
+ */
+export function parseQuantity(token: string): number | null {
+  const value = parseNumber(token);
+  return value === null || Math.abs(value) > LARGEST_NUMBER ? null : value;
+}
+
+/** True for the digits of a number that no quantity is: beyond `LARGEST_NUMBER`, or more than a double holds. */
+export function isOutOfRange(text: string): boolean {
+  if (!/\d/.test(text)) return false;
+  const { value, fault } = readNumber(text);
+  return value === null ? fault === "not-finite" : Math.abs(value) > LARGEST_NUMBER;
 }
 
 /**

@@ -23,6 +23,8 @@ export function pearson(x: ArrayLike<number>, y: ArrayLike<number>): number | nu
     sxx += dx * dx;
     syy += dy * dy;
   }
+  // A list against itself is 1 without the rounding that the roots would leave.
+  if (sxy === sxx && sxy === syy) return 1;
   const scale = Math.sqrt(sxx) * Math.sqrt(syy);
   // Values a rounding apart from each other can leave nothing of the squares.
   return scale > 0 ? clamp(sxy / scale) : null;

@@ -31,7 +31,8 @@ function formatOf(
     throw new IntakeRejection({ code: "G06", file: name, message: "The table has no rows." });
   }
   if (found.refusal && !(byName && found.refusal.code === "G10")) {
-    throw new IntakeRejection({ file: name, ...found.refusal });
+    const hint = byName && found.refusal.code === "G04" ? "Export the table as CSV." : found.refusal.hint;
+    throw new IntakeRejection({ file: name, ...found.refusal, hint });
   }
   if (found.format === "csv" || found.format === "sdf") {
     if (found.remark && found.format === "sdf") remark({ ...found.remark, severity: "remark", file: name });

@@ -1,6 +1,7 @@
 import type { MathNode, OperatorNode, Unit } from "mathjs";
 import type { ColumnData } from "../../lib/column-data.ts";
 import { DomainError } from "../../lib/errors.ts";
+import { LARGEST_NUMBER } from "../../lib/intake/numbers.ts";
 import { quoteFound } from "../../lib/text/escape.ts";
 import type { EnergyKind } from "../../lib/views.ts";
 import { factorBetween, isEnergy, math, unitOfColumn, unitOfEnergy } from "./expression-units.ts";
@@ -273,7 +274,7 @@ function compute(
   for (let k = 0; k < frames; k++) {
     if (data.some((one) => one?.present[k] !== 1)) continue;
     const value = valueAt(operation, columns, k);
-    if (!Number.isFinite(value)) continue;
+    if (!(Math.abs(value) <= LARGEST_NUMBER)) continue;
     values[k] = value;
     present[k] = 1;
   }
