@@ -46,9 +46,10 @@ export function WindowsPage(data: WindowsPageData) {
   const { team, chosen, found, pooled, settings } = data;
   const what = chosen ? `the series ${chosen.name}` : team.name;
   return (
-    <main className={`${pageClass} pt-6 pb-16`}>
+    <div className={`${pageClass} pt-6 pb-16`}>
       <SectionHead
-        title="Windows"
+        page
+        title={`Windows of ${chosen?.name ?? team.name}`}
         aside={<TextLink to={`${href("/methods")}#levels`}>How this is computed</TextLink>}
       />
       {pooled ? (
@@ -72,7 +73,7 @@ export function WindowsPage(data: WindowsPageData) {
         Best case: a window cannot bring back what the sampler never found. What held for these molecules need
         not hold for others.
       </Note>
-    </main>
+    </div>
   );
 }
 

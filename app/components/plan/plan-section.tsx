@@ -4,6 +4,7 @@ import { FigureFacts } from "~/components/charts/figure-facts";
 import { LevelsTabs } from "~/components/levels/levels-tabs";
 import { type LevelData, useLevelData, useMembers } from "~/components/levels/use-comparison";
 import { Badge } from "~/components/ui/badge";
+import { Button } from "~/components/ui/button";
 import { CopyButton } from "~/components/ui/copy-button";
 import { BlockHead, Finding, SectionHead } from "~/components/ui/finding";
 import { Note } from "~/components/ui/note";
@@ -17,7 +18,7 @@ import { useWorkbench } from "~/components/workbench/workbench-context";
 import { plural } from "~/lib/format";
 import { chooseLevels } from "~/lib/levels/better-level";
 import type { LevelEnergiesView, Member } from "~/lib/levels/level-energies";
-import { alignPlans, withChosen } from "~/lib/plan/chain";
+import { alignPlans, computedAnew, withChosen } from "~/lib/plan/chain";
 import type { Plan, PlanSet } from "~/lib/plan/plan";
 import { afterKnown, planFacts } from "~/lib/plan/plan-facts";
 import { firstPlans } from "~/lib/plan/start";
@@ -174,7 +175,12 @@ function Planned({
           { name: "level", value: start },
         ]}
       >
-        <PlanCharts set={set} figures={figures} startName={start} ordinal={startLevel?.ordinal ?? 1} />
+        <PlanCharts
+          {...{ set, figures, readOnly }}
+          startName={start}
+          ordinal={startLevel?.ordinal ?? 1}
+          onChange={setSet}
+        />
       </FigureFacts>
       <AlternativesTable
         set={set}
@@ -202,7 +208,11 @@ function PlanCharts({
   figures,
   startName,
   ordinal,
+  readOnly,
+  onChange,
 }: {
+  readOnly: boolean;
+  onChange: (set: PlanSet) => void;
   set: PlanSet;
   figures: PlanFigures;
   startName: string;
@@ -223,12 +233,19 @@ function PlanCharts({
           <CostChart set={set} report={report} />
         </FigureFacts>
       ) : (
-        <StatePanel title="No cost to draw">
+        <StatePanel
+          title="No cost to draw"
+          actions={
+            readOnly || hoursOpen(plan) ? undefined : (
+              <Button onClick={() => onChange(computedAnew(set))}>Count the hours as if computed anew</Button>
+            )
+          }
+        >
           <p>
             {hoursOpen(plan)
               ? "The core hours of a step are not known."
-              : "The energies of these steps are known: nothing is left to compute."}{" "}
-            Set core hours under Each to see what a share of the population costs.
+              : "The energies of these steps are known: nothing is left to compute. Counted as if computed anew, by rules of thumb until you set your own timings, the chain shows what it costs for a molecule like this."}{" "}
+            {hoursOpen(plan) ? "Set them under Each to see what a share of the population costs." : ""}
           </p>
         </StatePanel>
       )}

@@ -58,7 +58,23 @@ export function SeriesPage({ data }: { data: SeriesPageData }) {
           <h1 className="text-lg font-semibold tracking-title break-words sm:text-xl">
             {chosen?.name ?? team.name}
           </h1>
-          <Finding wide>{data.finding}</Finding>
+          <Finding
+            wide
+            more={
+              data.levels.length < 2 ? undefined : (
+                <TextLink
+                  to={{
+                    pathname: href("/teams/:team/windows", { team: team.id }),
+                    search: chosen ? `?series=${chosen.id}` : "",
+                  }}
+                >
+                  How wide a window {chosen ? "this series needs" : "these molecules need"}
+                </TextLink>
+              )
+            }
+          >
+            {data.finding}
+          </Finding>
         </div>
         {mayCompute ? (
           <div className="flex shrink-0 gap-2 max-sm:w-full max-sm:[&>*]:flex-1">

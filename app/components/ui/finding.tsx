@@ -1,12 +1,23 @@
 import type { ReactNode } from "react";
 
-/** Title of a section with what stands at its right ("How this is computed"). */
-export function SectionHead({ title, aside, id }: { title: ReactNode; aside?: ReactNode; id?: string }) {
+/** Title of a section, or of a whole page, with what stands at its right ("How this is computed"). */
+export function SectionHead({
+  title,
+  aside,
+  id,
+  page = false,
+}: {
+  title: ReactNode;
+  aside?: ReactNode;
+  id?: string;
+  page?: boolean;
+}) {
+  const Head = page ? "h1" : "h2";
   return (
     <div className="flex flex-wrap items-baseline justify-between gap-x-4 gap-y-1">
-      <h2 id={id} className="text-lg font-semibold tracking-title sm:text-xl">
+      <Head id={id} className="text-lg font-semibold tracking-title break-words sm:text-xl">
         {title}
-      </h2>
+      </Head>
       {aside ? (
         <span className="text-xs print:hidden [&_a]:inline-flex [&_a]:min-h-6 [&_a]:items-center pointer-coarse:[&_a]:min-h-11">
           {aside}

@@ -1,6 +1,6 @@
 import { describe, expect, it } from "vitest";
 import { alternativesCsv, marginalOf, orderOf } from "./alternatives-csv.ts";
-import { alignPlans, carriedOn, withChosen, withoutStep, withStep } from "./chain.ts";
+import { alignPlans, carriedOn, computedAnew, withChosen, withoutStep, withStep } from "./chain.ts";
 import { evaluatePlan } from "./evaluate.ts";
 import { keptOrder, marginalCosts } from "./front.ts";
 import { type PlanSet, type PlanStep, planSetSchema } from "./plan.ts";
@@ -30,6 +30,25 @@ const NEXT: PlanStep = {
   },
   sigma: 0.3,
 };
+
+describe("energies that are known", () => {
+  it("are counted as if they were computed anew, in every plan, and only where somebody asks", () => {
+    const known = firstPlans(
+      [
+        { id: "a", name: "MMFF94" },
+        { id: "b", name: "B3LYP/6-31G(d)" },
+      ],
+      { sift: null, temperatureK: 298.15, n: 6 },
+    );
+    const hours = ({ plans }: PlanSet) => plans.map(({ plan }) => plan.steps[0]!.hours);
+    expect(hours(known)).toEqual(Array(4).fill({ from: "known" }));
+    const anew = computedAnew(known);
+    expect(hours(anew)).toEqual(Array(4).fill({ from: "rule", rule: "dft-optimise" }));
+    expect(cutsOf(anew)).toEqual(cutsOf(known));
+    expect(computedAnew(anew)).toEqual(anew);
+  });
+});
+
 const cutsOf = ({ plans }: PlanSet) => plans.map(({ plan }) => plan.steps.map(({ cut }) => cut));
 /** What all plans must have in common. */
 const chainsOf = ({ plans }: PlanSet) =>

@@ -1,3 +1,4 @@
+import { defaultHours } from "./hours.ts";
 import type { Cut, Plan, PlanSet, PlanStep } from "./plan.ts";
 
 /**
@@ -43,6 +44,16 @@ export function withChosen(set: PlanSet, next: Plan): PlanSet {
     ...set,
     plans: set.plans.map((one, k) => (k === set.chosen ? { ...one, plan: next } : one)),
   });
+}
+
+/** Steps whose energies are known are counted as if they were computed anew: what the chain costs for a molecule like this. */
+export function computedAnew(set: PlanSet): PlanSet {
+  const plan = set.plans[set.chosen]?.plan;
+  if (plan === undefined) return set;
+  const steps = plan.steps.map((step) =>
+    step.hours.from === "known" ? { ...step, hours: defaultHours(step.name, false) } : step,
+  );
+  return withChosen(set, { ...plan, steps });
 }
 
 /**

@@ -290,10 +290,9 @@ describe("words", () => {
   it("lists what is assumed with its origin", () => {
     const list = planAssumptions(p, outcome, report, 32);
     expect(list.map((a) => a.origin)).toEqual([
-      "typed in",
-      "typed in",
-      "typed in",
-      "typed in",
+      ...["typed in", "typed in"],
+      // Repeats and slots as every plan begins with: nobody has set them.
+      ...["starting value", "starting value"],
       "not known",
       "not known",
     ]);

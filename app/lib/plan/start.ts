@@ -4,9 +4,15 @@ import type { Cut, Plan, PlanSet } from "./plan.ts";
 
 /** Seed of a new plan; stored with it. */
 export const PLAN_SEED = 412;
-/** Our own starting values. */
-const FIRST_SIGMA = 0.5;
-const KNOWN_SIGMA = 0.3;
+/** What a new plan starts with, until somebody sets it: our own values. */
+export const START_VALUES = {
+  /** kcal/mol between two levels, and on energies that are known. */
+  sigma: 0.5,
+  knownSigma: 0.3,
+  failRate: 0.04,
+  slots: 8,
+  coresPerSlot: 4,
+} as const;
 
 /**
  * A first set of plans for the levels that there are: from the first level to the last, at 90, 95, 99 and 100 % of the
@@ -31,14 +37,14 @@ export function firstPlans(
         name: next?.name ?? "next level",
         cut,
         hours: defaultHours(next?.name ?? "", next !== null),
-        sigma: FIRST_SIGMA,
+        sigma: START_VALUES.sigma,
       },
     ],
     temperatureK: options.temperatureK,
-    truthSigma: next === null ? 0 : KNOWN_SIGMA,
-    failRate: 0.04,
-    slots: 8,
-    coresPerSlot: 4,
+    truthSigma: next === null ? 0 : START_VALUES.knownSigma,
+    failRate: START_VALUES.failRate,
+    slots: START_VALUES.slots,
+    coresPerSlot: START_VALUES.coresPerSlot,
     draws: drawsOfPlan(options.n),
     seed: PLAN_SEED,
   });

@@ -19,6 +19,7 @@ import type { FrontPoint } from "./front.ts";
 import { RULES } from "./hours.ts";
 import type { Cut, HoursSource, Plan } from "./plan.ts";
 import type { PlansReport } from "./report.ts";
+import { START_VALUES } from "./start.ts";
 
 /** Core hours as one would say them. */
 export function formatHours(hours: number): string {
@@ -123,7 +124,7 @@ function furtherWords(plan: Plan, outcome: PlanOutcome, front: FrontPoint[] | nu
 }
 
 export interface Assumption {
-  origin: "your timings" | "rule of thumb" | "typed in" | "not known";
+  origin: "your timings" | "rule of thumb" | "typed in" | "starting value" | "not known";
   /** Bold clause. */
   what: string;
   /** What the result becomes if it is wrong. */
@@ -166,8 +167,9 @@ export function planAssumptions(
         ? `on the energies of ${last.name}`
         : `between ${at === 0 ? "the start" : plan.steps[at - 1]!.name} and ${plan.steps[at]!.name}`;
     const sigma = at === "truth" ? plan.truthSigma : plan.steps[at]!.sigma;
+    const start = at === "truth" ? START_VALUES.knownSigma : START_VALUES.sigma;
     return {
-      origin: "typed in",
+      origin: setOr(sigma === start),
       what: `± ${kcal(sigma)} ${between}`,
       wrong: `Independent for each conformer. At ± ${formatEnergy(variant.sigma)} the plan keeps ${formatPercent(variant.mean)}, ${formatPercent(variant.low)} to ${formatPercent(variant.high)}.`,
     };
@@ -176,12 +178,12 @@ export function planAssumptions(
     ...hours,
     ...errors,
     {
-      origin: "typed in",
+      origin: setOr(plan.failRate === START_VALUES.failRate),
       what: `${formatPercent(plan.failRate)} of the jobs are repeated`,
       wrong: "None is lost for good, and a repeat costs as much as the first.",
     },
     {
-      origin: "typed in",
+      origin: setOr(plan.slots === START_VALUES.slots && plan.coresPerSlot === START_VALUES.coresPerSlot),
       what: `${plural(plan.slots, "slot")} of ${plural(plan.coresPerSlot, "core")}`,
       wrong: "Jobs start together in rounds and use their cores fully; a queue before them is not counted.",
     },
@@ -197,6 +199,8 @@ export function planAssumptions(
     },
   ];
 }
+
+const setOr = (start: boolean): Assumption["origin"] => (start ? "starting value" : "typed in");
 
 function originOf(source: HoursSource): Assumption["origin"] {
   if (source.from === "rule") return "rule of thumb";

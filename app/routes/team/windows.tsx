@@ -1,3 +1,4 @@
+import { href } from "react-router";
 import type { ShellHandle } from "~/components/layout/breadcrumbs";
 import { type WindowSetting, WindowsPage, type WindowsPageData } from "~/components/levels/windows-page";
 import { actorContext, requestIdContext } from "~/context";
@@ -15,7 +16,14 @@ export function meta({ loaderData }: Route.MetaArgs) {
   return [{ title: `Windows · ${loaderData?.chosen?.name ?? loaderData?.team.name ?? "Series"} · Lowlying` }];
 }
 
-export const handle: ShellHandle<WindowsPageData> = { crumbs: () => [{ label: "Windows" }] };
+export const handle: ShellHandle<WindowsPageData> = {
+  crumbs: ({ team, chosen }) => [
+    ...(chosen
+      ? [{ label: chosen.name, to: `${href("/teams/:team", { team: team.id })}?series=${chosen.id}` }]
+      : []),
+    { label: "Windows" },
+  ],
+};
 
 /** A number of the address within bounds; for what is none the default counts, and the page says so at the field. */
 function numberOf(
