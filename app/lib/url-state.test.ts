@@ -89,7 +89,7 @@ describe("reading", () => {
     "sort=up",
     "sort=<b>.up",
     "v=77",
-    "level=MMFF94",
+    "level=%20",
     "zero=none",
     "zf=0",
     "of=all",
@@ -98,6 +98,11 @@ describe("reading", () => {
     "err=-1",
   ])("nonsense is taken as absent: %s", (query) => {
     expect(readState(new URLSearchParams(query))).toEqual(defaultState());
+  });
+
+  test("level and reference may be said by name, as in a link written by hand", () => {
+    const { compare } = readState(new URLSearchParams("level=MMFF94&ref=B3LYP%2F6-31G(d)"));
+    expect([compare.level, compare.reference]).toEqual(["MMFF94", "B3LYP/6-31G(d)"]);
   });
 
   test("doubles and rubbish among frames are passed over, and the list has an end", () => {

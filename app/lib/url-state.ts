@@ -28,7 +28,7 @@ export interface WorkbenchState {
 
 /** What the section on levels compares, and how. */
 export interface CompareState {
-  /** Ids of level and reference; null is the cheapest and the best by their names. */
+  /** Level and reference, by id or name; null is the cheapest and the best by their names. */
   level: string | null;
   reference: string | null;
   zero: ZeroChoice;
@@ -69,6 +69,7 @@ export const MAX_SIGMA_KCAL = 20;
 const VERSION = "1";
 
 const ID = /^[a-z2-7]{16}$/;
+const MAX_LEVEL_NAME = 120;
 const NUMBER = /^\d{1,9}(\.\d{1,9})?$/;
 const SORT = /^([a-z][a-z-]{0,30})\.(up|down)$/;
 /** Names of the state in the address. Other parameters belong to somebody else and are kept. */
@@ -134,11 +135,12 @@ export function readState(params: URLSearchParams): WorkbenchState {
 
 function readCompare(params: URLSearchParams): CompareState {
   const start = defaultState().compare;
-  const id = (key: string) => (ID.test(params.get(key) ?? "") ? params.get(key) : null);
+  // A link written by hand may say the name.
+  const level = (key: string) => params.get(key)?.trim().slice(0, MAX_LEVEL_NAME) || null;
   const percent = readNumber(params.get("keep"), 0.01, 100);
   return {
-    level: id("level"),
-    reference: id("ref"),
+    level: level("level"),
+    reference: level("ref"),
     zero: oneOf(params.get("zero"), ["least-squares", "own-minimum", "common", "median"], start.zero),
     zeroFrame: readCounts(params.get("zf"), 1)[0] ?? null,
     among: oneOf(params.get("of"), ["conformers", "accepted"], start.among),

@@ -335,7 +335,7 @@ function agreementRows({ comparison, paired }: Comparison): Row[] {
       digits: 3,
       unit: "nat",
       formula: <>Σ q ln(q/p), p at the level, q at the reference</>,
-      note: `the other way ${Number.isFinite(c.klLevelReference) ? fixed(c.klLevelReference, 3) : "infinite"}`,
+      note: `of the reference from the level; the other way ${Number.isFinite(c.klLevelReference) ? fixed(c.klLevelReference, 3) : "infinite"}`,
     },
     ...[1, 2, 3, 5, 10]
       .filter((k) => k < c.n)

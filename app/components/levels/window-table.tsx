@@ -111,7 +111,7 @@ export function WindowTable({
       </p>
       <Note className="mt-4">
         Best case: a window cannot bring back what the sampler never found, and {reference.name} is taken as
-        it is.
+        it is. Windows are rounded up, so that the printed number keeps what is said of it.
       </Note>
     </div>
   );

@@ -118,7 +118,7 @@ export function commonPair(lists: readonly (readonly { name: string }[])[]): [st
 }
 
 /**
- * The same where one side is asked for: the other is the cheapest or the best of the rest.
+ * The same where one side is asked for, by its id or name: the other is the cheapest or the best of the rest.
  *
  * @example chooseLevels(levels, { level: "a", reference: null }).reference // the best of the others
  */
@@ -126,9 +126,10 @@ export function chooseLevels<T extends { id: string; name: string }>(
   levels: readonly T[],
   asked: { level: string | null; reference: string | null },
 ): { level: T | null; reference: T | null } {
-  const byId = (id: string | null) => levels.find((one) => one.id === id) ?? null;
-  const level = byId(asked.level);
-  const reference = byId(asked.reference);
+  const meant = (said: string | null) =>
+    levels.find(({ id }) => id === said) ?? levels.find(({ name }) => name === said) ?? null;
+  const level = meant(asked.level);
+  const reference = meant(asked.reference);
   if (level === null && reference === null) return cheapAndBetter(levels);
   const others = levels.filter((one) => one !== level && one !== reference);
   const rest = cheapAndBetter(others);
