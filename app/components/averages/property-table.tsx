@@ -16,7 +16,7 @@ import type { PropertyValues } from "~/lib/averages/property-set";
 import { type AverageRule, possibleRules } from "~/lib/averages/rule";
 import { shownAveragesCsv } from "~/lib/averages/shown-csv";
 import { coveredShare, digitsFor } from "~/lib/averages/words";
-import { ABSENT, fixed, formatCount, formatEnergy, formatTemperature, withUnit } from "~/lib/format";
+import { ABSENT, fixed, formatCount, formatEnergy, formatTemperature, plural, withUnit } from "~/lib/format";
 import { makeGraph } from "~/lib/structure";
 import { RuleName } from "./rule-name";
 import type { Averaged, AveragedProperty } from "./use-averages";
@@ -103,7 +103,7 @@ export function PropertyTable({
               <Td className="text-ink-2 max-xl:hidden">per atom, equal ones merged</Td>
               <Td align="right" colSpan={1}>
                 <a className="text-link underline underline-offset-3" href={`#${anchorOf(group.quantity)}`}>
-                  {formatCount(group.groups)} groups
+                  {plural(group.groups, "group")}
                 </a>
               </Td>
               {averaged.temperatures.slice(1).map((kelvin) => (

@@ -131,7 +131,11 @@ function PlannedRow({
           value={column.name}
           onSettle={(name) => onDecide({ column: number, name })}
         />
-        {column.exists ? <Badge tone="remark">there already</Badge> : null}
+        {column.exists ? (
+          <span className="mt-1 block">
+            <Badge tone="remark">there already</Badge>
+          </span>
+        ) : null}
       </Td>
       <Td className="min-w-32">
         <SelectField
