@@ -35,20 +35,23 @@ interface Row {
 /** Beyond this many conformers a bootstrap would keep a phone busy for minutes. */
 export const MOST_RESAMPLED = 5000;
 
-/** Every figure of agreement with its interval; each says where it comes from. */
+/** Figures of agreement, of the energies or of what follows from them, with intervals; each says where it comes from. */
 export function AgreementTable({
+  of,
   found,
   intervals,
   resampled,
   temperatureK,
 }: {
+  of: "energies" | "populations";
   found: Comparison;
   intervals: ComparisonIntervals | null;
   /** False where there are too many conformers for intervals: none are coming. */
   resampled: boolean;
   temperatureK: number;
 }) {
-  const rows = agreementRows(found);
+  const ofEnergies = of === "energies";
+  const rows = ofEnergies ? energyRows(found) : populationRows(found);
   const { n, align } = found.comparison;
   const inputs: Source["inputs"] = [
     { label: "level a", value: found.level.name },
@@ -59,8 +62,10 @@ export function AgreementTable({
   ];
   return (
     <div className="min-w-0 break-inside-avoid">
-      <BlockHead title={`Agreement, ${plural(n, "conformer")}`} />
-      <Table aria-label="Agreement of the two levels">
+      <BlockHead
+        title={ofEnergies ? `Agreement, ${plural(n, "conformer")}` : "Agreement of populations and ranking"}
+      />
+      <Table aria-label={ofEnergies ? "Agreement of the two levels" : "Agreement of populations and ranking"}>
         <thead>
           <tr>
             <Th>Measure</Th>
@@ -88,15 +93,17 @@ export function AgreementTable({
           ))}
         </tbody>
       </Table>
-      <p className="mt-2 max-w-read text-xs text-ink-3">
-        {intervals
-          ? `Intervals: ${formatCount(intervals.resamples)} resamples of the conformers, 2.5 to 97.5 %, ${intervals.generator}, seed ${intervals.seed}; each resample finds its own zero. Conformers of one molecule are not independent: they say nothing of other molecules.`
-          : n < FEWEST_RESAMPLED
-            ? "No intervals below four conformers."
-            : resampled
-              ? "The intervals are being drawn."
-              : `No intervals: they are not drawn for more than ${plural(MOST_RESAMPLED, "conformer")}, and here are ${formatCount(n)}.`}
-      </p>
+      {ofEnergies ? (
+        <p className="mt-2 max-w-read text-xs text-ink-3">
+          {intervals
+            ? `Intervals: ${formatCount(intervals.resamples)} resamples of the conformers, 2.5 to 97.5 %, ${intervals.generator}, seed ${intervals.seed}; each resample finds its own zero. Conformers of one molecule are not independent: they say nothing of other molecules.`
+            : n < FEWEST_RESAMPLED
+              ? "No intervals below four conformers."
+              : resampled
+                ? "The intervals are being drawn."
+                : `No intervals: they are not drawn for more than ${plural(MOST_RESAMPLED, "conformer")}, and here are ${formatCount(n)}.`}
+        </p>
+      ) : null}
     </div>
   );
 }
@@ -176,7 +183,7 @@ function withoutZero(c: Comparison["comparison"]): Row[] {
   ];
 }
 
-function agreementRows({ comparison, paired }: Comparison): Row[] {
+function energyRows({ comparison, paired }: Comparison): Row[] {
   const c = comparison;
   const pairs = pairDeviations(c.deviations);
   const kcal = "kcal/mol";
@@ -308,6 +315,11 @@ function agreementRows({ comparison, paired }: Comparison): Row[] {
       interval: "kendall",
       note: correlationNote(c.kendall),
     },
+  ];
+}
+
+function populationRows({ comparison: c, paired }: Comparison): Row[] {
+  return [
     {
       label: "Population overlap",
       name: "Population overlap",

@@ -180,8 +180,11 @@ function Figures({ found: live }: { found: Comparison }) {
       <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">
         <LevelAgainstLevel {...shared} />
         <WindowChart found={found} band={band} />
-        <AgreementTable found={found} {...{ intervals, resampled, temperatureK }} />
-        <WindowTable found={found} {...{ intervals, resampled, band }} />
+        <AgreementTable of="energies" {...{ found, intervals, resampled, temperatureK }} />
+        <div className="grid content-start gap-y-8">
+          <WindowTable found={found} {...{ intervals, resampled, band }} />
+          <AgreementTable of="populations" {...{ found, intervals, resampled, temperatureK }} />
+        </div>
       </div>
       <ComparedTable {...shared} />
       <div className="mt-9 grid gap-x-10 gap-y-8 xl:grid-cols-2">

@@ -134,8 +134,9 @@ export function WindowTable({
     const sigma = withUnit(formatEnergy(state.compare.sigmaKcal), "kcal/mol");
     if (!band) return `With an error of ${sigma} on ${reference.name}, ranges are being drawn.`;
     const at = bandWithin(band, window.kcal);
+    const [low, high] = at ? [formatPercent(at.low), formatPercent(at.high)] : [];
     const range = at
-      ? ` that window keeps ${formatPercent(at.low)} to ${formatPercent(at.high)} of the true population`
+      ? ` that window keeps ${low === high ? low : `${low} to ${high}`} of the true population`
       : "";
     return `With an independent error of ${sigma} on each energy of ${reference.name},${range} (95 % of ${formatCount(band.draws)} draws, ${band.generator}, seed ${band.seed}).`;
   }
