@@ -54,6 +54,13 @@ test("a contact and a torsion picked on the structure are averaged by their rule
   await pick(page, "3,4,5,6");
   await page.getByRole("button", { name: "Make it a column" }).click();
   const torsion = row(page, /^torsion C3–C4–N5–S6/);
+  await test.step("a column that was made can be taken back, and made again", async () => {
+    await expect(torsion).toBeVisible();
+    await expect(page.getByText("torsion C3–C4–N5–S6 is a column now.")).toBeVisible();
+    await page.getByRole("button", { name: "Undo" }).click();
+    await expect(torsion).toHaveCount(0);
+    await page.getByRole("button", { name: "Make it a column" }).click();
+  });
   await expect(torsion).toContainText("circular, both hands");
   await expect(torsion).toContainText("180");
   await expect(torsion).toContainText("fixed");
@@ -74,6 +81,23 @@ test("a contact and a torsion picked on the structure are averaged by their rule
     await page.getByLabel("A further temperature").press("Enter");
     await expect(page.getByRole("columnheader", { name: "310 K" })).toBeVisible();
     expect(new URL(page.url()).searchParams.get("Ts")).toContain("310");
+  });
+
+  await test.step("properties are set beside measured values, kept, and there after a reload", async () => {
+    await page.getByText("Set properties beside measured values").click();
+    const list = page.getByLabel("A list to take in, a property and a value a line");
+    await list.fill("d H16–H26 (mean of 6) 6,5\nnothing 3");
+    await page.getByRole("button", { name: "Take the values" }).click();
+    await expect(page.getByText("No such property in the table: nothing 3.", { exact: false })).toBeVisible();
+    await page.getByRole("button", { name: "Read commas as decimal commas" }).click();
+    await expect(list).toHaveValue("nothing 3");
+    const beside = page.getByRole("table", { name: "Properties beside measured values" });
+    await expect(beside.getByRole("row", { name: /^d H16–H26/ })).toContainText("+0.09");
+    await page.getByRole("button", { name: "Keep with the ensemble" }).click();
+    await expect(page.getByText(/^1 measured value kept with the ensemble by /)).toBeVisible();
+    expect(new URL(page.url()).searchParams.has("measp")).toBe(false);
+    await page.reload();
+    await expect(page.getByText("Å 1 value: mean absolute error", { exact: false })).toBeVisible();
   });
 
   await test.step("averages.csv has the same figures", async () => {

@@ -1,4 +1,4 @@
-import { useState } from "react";
+import { useEffect, useState } from "react";
 import { useFetcher } from "react-router";
 import { SubmitButton } from "~/components/ui/button";
 import { Checkbox } from "~/components/ui/checkbox";
@@ -8,6 +8,7 @@ import { Segments } from "~/components/ui/segments";
 import { SelectField } from "~/components/ui/select-field";
 import type { ActAnswer } from "~/components/workbench/act-answer";
 import { useWorkbench } from "~/components/workbench/workbench-context";
+import { useUndoAdded } from "~/hooks/use-undo-added";
 import { GENERAL_SET, GENERAL_SOURCE, KARPLUS_SETS, OWN_SET } from "~/lib/averages/karplus";
 import { firstUnbonded, takesPhi, whyNotGeneral } from "~/lib/averages/observable";
 import { couplingWords } from "~/lib/averages/observable-words";
@@ -20,6 +21,11 @@ export function PickColumn() {
   const { ensemble, state } = useWorkbench();
   const picked = state.atoms.filter((atom) => atom < ensemble.atoms);
   const fetcher = useFetcher<ActAnswer>();
+  const undoable = useUndoAdded(ensemble.id);
+  const made = fetcher.data?.ok ? fetcher.data.done?.column : undefined;
+  useEffect(() => {
+    if (made) undoable([made], `${made.name} is a column now.`);
+  }, [made, undoable]);
   const [rule, setRule] = useState<"r-6" | "r-3" | "linear">("r-6");
   const [four, setFour] = useState<"torsion" | "coupling">("torsion");
   const graph = makeGraph(Uint8Array.from(ensemble.elements), ensemble.bonds);

@@ -1,6 +1,7 @@
 import { useCallback, useRef, useState } from "react";
 import { useRevalidator } from "react-router";
 import { showToast } from "~/components/ui/toast";
+import { useUndoAdded } from "~/hooks/use-undo-added";
 import type { ColumnsPreview } from "~/lib/api/schemas";
 import { plural } from "~/lib/format";
 import { type ColumnChoiceField, previewColumns, type Refused, saveColumns } from "./send-columns";
@@ -31,6 +32,7 @@ export function useAddedFile(ensembleId: string): AddedFile {
   const [refused, setRefused] = useState<Refused | null>(null);
   const [busy, setBusy] = useState<AddedFile["busy"]>(null);
   const { revalidate } = useRevalidator();
+  const undoable = useUndoAdded(ensembleId);
   const turn = useRef(0);
 
   const look = useCallback(
@@ -109,7 +111,10 @@ export function useAddedFile(ensembleId: string): AddedFile {
         return;
       }
       const { columns } = answer.body;
-      showToast({ tone: "done", text: `${plural(columns.length, "column")} added from ${file.name}.` });
+      const said = `${plural(columns.length, "column")} added from ${file.name}.`;
+      // Numbers that were replaced are gone: only what is new can be taken back.
+      if (fields.replace === "true") showToast({ tone: "done", text: said });
+      else undoable(columns, said);
       clear();
       void revalidate();
     },

@@ -9,6 +9,8 @@ export interface ActAnswer {
     intent: string;
     frame?: number;
     reason?: string;
+    /** The column that came of it. */
+    column?: { id: string; name: string };
     /** The ensemble that came of it; `created` is false where it was here before. */
     made?: { ensembleId: string; name: string; frames: number; created: boolean };
   };

@@ -52,8 +52,8 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
         const message = "Pick two, three or four atoms, and write A, B and C as numbers, for example 7.76.";
         return data({ ok: false, message } satisfies ActAnswer, { status: 400 });
       }
-      await addObservable({ actor, ensembleId, request: request.data });
-      return { ok: true, done: { intent: "observe" } } satisfies ActAnswer;
+      const { id, name } = await addObservable({ actor, ensembleId, request: request.data });
+      return { ok: true, done: { intent: "observe", column: { id, name } } } satisfies ActAnswer;
     }
     case "split":
       await splitAtoms({ actor, ensembleId, parts: readParts(text("parts")) });

@@ -49,6 +49,11 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
     case "remove":
       await removeColumn(at);
       return { ok: true, done: { intent } } satisfies ActAnswer;
+    case "remove-added":
+      // The last first: what was computed from others goes before them.
+      for (const id of form.getAll("column").map(String).reverse())
+        await removeColumn({ actor, ensembleId, columnId: id });
+      return { ok: true, done: { intent } } satisfies ActAnswer;
     case "restore":
       await restoreColumn(at);
       return { ok: true, done: { intent } } satisfies ActAnswer;
