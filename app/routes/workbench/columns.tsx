@@ -49,11 +49,12 @@ async function act(actor: Actor, ensembleId: string, form: FormData) {
     case "remove":
       await removeColumn(at);
       return { ok: true, done: { intent } } satisfies ActAnswer;
-    case "remove-added":
-      // The last first: what was computed from others goes before them.
-      for (const id of form.getAll("column").map(String).reverse())
-        await removeColumn({ actor, ensembleId, columnId: id });
+    case "remove-added": {
+      const ids = form.getAll("column").map(String);
+      if (ids.length === 0) throw notFound();
+      for (const columnId of ids) await removeColumn({ actor, ensembleId, columnId });
       return { ok: true, done: { intent } } satisfies ActAnswer;
+    }
     case "restore":
       await restoreColumn(at);
       return { ok: true, done: { intent } } satisfies ActAnswer;

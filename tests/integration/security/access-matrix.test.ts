@@ -284,13 +284,14 @@ const FORM_ACTS: Act[] = [
   ].map(([intent, fields, reached]) =>
     act("/ensembles/:id/intake", intent, fields, ANALYSTS(Number(reached))),
   ),
-  ...["remove", "restore", "change", "derive", "use-as-level", "use-as-property"].map((intent) =>
-    act(
-      "/ensembles/:id/columns",
-      intent,
-      { column: "none", name: "N", expression: "nothing here", unit: "kcal/mol", energyKind: "electronic" },
-      ANALYSTS(intent === "derive" ? 422 : 404),
-    ),
+  ...["remove", "remove-added", "restore", "change", "derive", "use-as-level", "use-as-property"].map(
+    (intent) =>
+      act(
+        "/ensembles/:id/columns",
+        intent,
+        { column: "none", name: "N", expression: "nothing here", unit: "kcal/mol", energyKind: "electronic" },
+        ANALYSTS(intent === "derive" ? 422 : 404),
+      ),
   ),
   // Checking a formula stores nothing.
   act("/ensembles/:id/columns", "check", { expression: "1" }, "200 200 200"),
@@ -302,6 +303,7 @@ const FORM_ACTS: Act[] = [
   // Nothing was taken apart: there is nothing to do.
   act("/ensembles/:id/averages", "join", { atom: "1" }, ANALYSTS(200)),
   act("/ensembles/:id/averages", "measured", { record: "{}", version: "0" }, ANALYSTS(422)),
+  act("/ensembles/:id/averages", "measured-properties", { record: "{}", version: "0" }, ANALYSTS(422)),
   act(
     "/ensembles/:id/distinct-set",
     "sift",
