@@ -118,7 +118,7 @@ test("a second structure file in another order becomes a level, and a formula an
   await page.getByRole("button", { name: "Change mixed" }).click();
   await page.getByRole("button", { name: "Remove the column" }).click();
   await expect(rows(page).filter({ hasText: "mixed" })).toHaveCount(0);
-  await page.getByRole("button", { name: "Undo" }).click();
+  await page.getByRole("button", { name: "Undo" }).last().click();
   await expect(rows(page).filter({ hasText: "mixed" })).toHaveCount(1);
 });
 
