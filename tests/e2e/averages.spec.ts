@@ -97,7 +97,7 @@ test("a contact and a torsion picked on the structure are averaged by their rule
     await expect(page.getByText(/^1 measured value kept with the ensemble by /)).toBeVisible();
     expect(new URL(page.url()).searchParams.has("measp")).toBe(false);
     await page.reload();
-    await expect(page.getByText("Å 1 value: mean absolute error", { exact: false })).toBeVisible();
+    await expect(page.getByText("Å 1 value, off by 0.09", { exact: false })).toBeVisible();
   });
 
   await test.step("averages.csv has the same figures", async () => {

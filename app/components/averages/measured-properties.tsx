@@ -14,7 +14,7 @@ import {
   measuredPropertiesRecord,
   readPastedProperties,
 } from "~/lib/averages/measured-properties";
-import { agreementWords } from "~/lib/averages/measured-words";
+import { unitWords } from "~/lib/averages/measured-words";
 import { asTyped, digitsFor } from "~/lib/averages/words";
 import { ABSENT, fixed, formatDateTime, formatTemperature, plural, signed } from "~/lib/format";
 import { KeepMeasured } from "./keep-measured";
@@ -92,7 +92,7 @@ export function MeasuredProperties({
         />
         {units.map(({ unit, agreement, farthest }) => (
           <p key={unit} className="figures max-w-read border-t border-rule pt-3">
-            <b>{unit}</b> {agreementWords(agreement, unit, farthest, false)}
+            <b>{unit}</b> {unitWords(agreement, unit, farthest)}
           </p>
         ))}
         <FiguresTable rows={shown} temperatureK={temperatureK} set={change} />

@@ -1,7 +1,7 @@
 import { BreakableName } from "~/components/ui/level-marker";
 import { Table, Td, Th, Tr } from "~/components/ui/table";
 import { asideWords } from "~/lib/averages/measured";
-import { agreementWords, assignmentWords, scalingWords } from "~/lib/averages/measured-words";
+import { agreementWords, assignmentWords, scalingWords, unitWords } from "~/lib/averages/measured-words";
 import { asTyped, digitsFor } from "~/lib/averages/words";
 import { symbolOf } from "~/lib/chem/elements";
 import { atomNames, type EditionMeasured, setAsideIn } from "~/lib/edition/measured";
@@ -34,7 +34,7 @@ function Properties({ figures: { rows, units } }: { figures: EditionFigures }) {
       <h3 className="text-sm font-semibold">Properties</h3>
       {units.map(({ unit, agreement }) => (
         <p key={unit} className="keep figures mt-2 max-w-read">
-          <b>{unit}</b> {agreementWords(agreementFigures(agreement), unit, agreement.maxAt, false)}
+          <b>{unit}</b> {unitWords(agreementFigures(agreement), unit, agreement.maxAt)}
         </p>
       ))}
       <Table aria-label="Properties beside measured values" className="figures mt-3">

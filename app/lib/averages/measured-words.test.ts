@@ -2,7 +2,7 @@ import { describe, expect, it } from "vitest";
 import { makeGraph } from "../structure.ts";
 import { compareMeasured } from "./assignment.ts";
 import { agreementCsv, besideCsv } from "./measured-csv.ts";
-import { agreementWords, assignmentWords, scalingWords } from "./measured-words.ts";
+import { agreementWords, assignmentWords, scalingWords, unitWords } from "./measured-words.ts";
 import { againstMeasured } from "./shielding-fit.ts";
 import { waysToSplit } from "./split-ways.ts";
 import { coveredShare, signalName } from "./words.ts";
@@ -17,6 +17,14 @@ describe("how well values meet the measured ones", () => {
     expect(plain(agreementWords(five, "ppm", "C5", false))).toBe(
       "5 values: mean absolute error (MAE) 4.00 ppm, root mean square error (RMSE) 4.24 ppm, largest 6.00 ppm at C5. Against the measured values they run with slope m 2.000 and intercept b 1.00 ppm (n 5); mapped back by that line the corrected MAE is 0.00 ppm.",
     );
+  });
+
+  it("of properties in one unit has no more to say of one value than how far off it is", () => {
+    expect(plain(unitWords(againstMeasured([7], [7.25])!, "Hz", "3J"))).toBe("1 value, off by 0.25 Hz.");
+    expect(plain(unitWords(againstMeasured([3, 5], [1, 2])!, "Hz", "J2"))).toBe(
+      "2 values: mean absolute error (MAE) 2.50 Hz, root mean square error (RMSE) 2.55 Hz, largest 3.00 Hz at J2.",
+    );
+    expect(plain(unitWords(five!, "Hz", "J5"))).toContain("with slope m 2.000 and intercept b 1.00 Hz (n 5)");
   });
 
   it("says what is missing below five, and that a line fitted to these very values corrects nothing", () => {

@@ -17,9 +17,8 @@ export function agreementWords(
   fitted: boolean,
 ): string {
   if (agreement === null) return "Nothing measured yet.";
-  const of = (value: number) => withUnit(fixed(value, 2), unit ?? "");
-  const { n, mad, rmsd, max, corrected } = agreement;
-  const errors = `${plural(n, "value")}: mean absolute error (MAE) ${of(mad)}, root mean square error (RMSE) ${of(rmsd)}, largest ${of(max)} at ${farthest}.`;
+  const { n, corrected } = agreement;
+  const errors = errorWords(agreement, unit, farthest);
   if (fitted)
     return `${errors} The line is fitted to these very values, so that the corrected MAE is the same.`;
   if (corrected === null) {
@@ -27,8 +26,28 @@ export function agreementWords(
       ? `${errors} From ${FEWEST_FOR_CORRECTION} values on they are corrected by their line against the measured ones too.`
       : errors;
   }
-  const { line } = corrected;
-  return `${errors} Against the measured values they run with slope m ${fixed(line.slope, 3)} and intercept b ${of(line.intercept)} (n ${line.n}); mapped back by that line the corrected MAE is ${of(corrected.mad)}.`;
+  return `${errors} ${lineWords(corrected, unit)}`;
+}
+
+/**
+ * The same of properties of the whole molecule in one unit.
+ *
+ * @example unitWords(agreement, "Hz", "3J") // "1 value, off by 0.36 Hz."
+ */
+export function unitWords(agreement: AgreementFigures, unit: string, farthest: string): string {
+  if (agreement.n === 1) return `1 value, off by ${withUnit(fixed(agreement.max, 2), unit)}.`;
+  const errors = errorWords(agreement, unit, farthest);
+  return agreement.corrected === null ? errors : `${errors} ${lineWords(agreement.corrected, unit)}`;
+}
+
+function errorWords({ n, mad, rmsd, max }: AgreementFigures, unit: string | null, farthest: string): string {
+  const of = (value: number) => withUnit(fixed(value, 2), unit ?? "");
+  return `${plural(n, "value")}: mean absolute error (MAE) ${of(mad)}, root mean square error (RMSE) ${of(rmsd)}, largest ${of(max)} at ${farthest}.`;
+}
+
+function lineWords({ line, mad }: NonNullable<AgreementFigures["corrected"]>, unit: string | null): string {
+  const of = (value: number) => withUnit(fixed(value, 2), unit ?? "");
+  return `Against the measured values they run with slope m ${fixed(line.slope, 3)} and intercept b ${of(line.intercept)} (n ${line.n}); mapped back by that line the corrected MAE is ${of(mad)}.`;
 }
 
 /** The line that scales the shieldings of a nucleus to shifts. */
