@@ -123,6 +123,7 @@ function Tables() {
           { input: "No names in the first row", ...ASKED },
           { input: "Energies without a unit", ...ASKED },
           { input: "Text in a column of numbers, rows of no frame, frames without a row", ...REMARK },
+          { input: "A number beyond 1e50, either sign", note: "out of range: missing", ...REMARK },
           { input: "Rows that are too short or too long", note: "the row is not taken", ...HELD },
           {
             input: "The same key on two rows, decimal commas between commas, a quote never closed",
