@@ -87,7 +87,7 @@ function Looked({ added, preview }: { added: AddedFile; preview: ColumnsPreview 
         onKind={(column, kind) => added.decide({ column, kind })}
       />
       <FirstRows preview={preview} />
-      {preview.type === "structures" ? <HowMatched added={added} /> : null}
+      {preview.type === "structures" ? <FromStructures added={added} /> : null}
       {preview.columns.length > 0 ? (
         <TakenAs preview={preview} choices={added.choices} onDecide={added.decide} />
       ) : null}
@@ -132,19 +132,30 @@ function Looked({ added, preview }: { added: AddedFile; preview: ColumnsPreview 
   );
 }
 
-function HowMatched({ added }: { added: AddedFile }) {
+/** Of a second structure file: how its frames find those of the ensemble, and which of its numbers are taken. */
+function FromStructures({ added }: { added: AddedFile }) {
   return (
-    <SelectField
-      className="mt-6 max-w-80"
-      label="Frames are matched"
-      value={added.fields.match ?? "structure"}
-      choices={[
-        { value: "structure", label: "by structure" },
-        { value: "label", label: "by label" },
-        { value: "number", label: "by number" },
-      ]}
-      onChange={(event) => added.answer({ match: event.currentTarget.value })}
-    />
+    <div className="mt-6 grid max-w-[46rem] gap-4 sm:grid-cols-2">
+      <SelectField
+        label="Frames are matched"
+        value={added.fields.match ?? "structure"}
+        choices={[
+          { value: "structure", label: "by structure" },
+          { value: "label", label: "by label" },
+          { value: "number", label: "by number" },
+        ]}
+        onChange={(event) => added.answer({ match: event.currentTarget.value })}
+      />
+      <SelectField
+        label="Taken from the file"
+        value={added.fields.kind ?? ""}
+        choices={[
+          { value: "", label: "its energies: a level" },
+          { value: "property", label: "its further numbers: properties" },
+        ]}
+        onChange={(event) => added.answer({ kind: event.currentTarget.value })}
+      />
+    </div>
   );
 }
 

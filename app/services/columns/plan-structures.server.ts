@@ -206,7 +206,7 @@ async function settle(
   const leftOut = others.map(({ name: header }) => ({
     column: null,
     header,
-    why: "only the energies are taken; send kind=property for the others",
+    why: "only the energies are taken; the others come as properties, with kind=property",
   }));
   return { columns, leftOut, questions: [], messages: [...messages, ...leftOutRemark(name, others)] };
 }
