@@ -234,6 +234,30 @@ describe("observables picked on the structure", () => {
     expect((await csv()).get(torsionColumn.name)!.rule).toBe("circular");
   });
 
+  it("are of these very atoms where equivalent ones are not wanted, and say so in their definition", async () => {
+    const hydrogen = [...set.graph.elements.keys()].filter((atom) => set.graph.elements[atom] === 1);
+    // The first hydrogen is one of a methyl group; two carbons stand for themselves alone.
+    const many = await ask({
+      observable: "distance",
+      atoms: [hydrogen[0]! + 1, 6],
+      merge: false,
+      rule: "linear",
+      name: "one of three",
+    });
+    const one = await ask({
+      observable: "distance",
+      atoms: [1, 2],
+      merge: false,
+      rule: "linear",
+      name: "C1 C2",
+    });
+    expect((await stored(many.id)).definition).toMatchObject({ parameters: { numbered: "file" } });
+    expect((await stored(one.id)).definition).not.toMatchObject({ parameters: { numbered: "file" } });
+    const column = await stored(many.id);
+    for (const k of [0, 150, 299])
+      expect(value(column.data, k)).toBeCloseTo(distance(structure(k), hydrogen[0]!, 5), 9);
+  });
+
   it("are merged over a methyl group, and computed again when the rule changes", async () => {
     const hydrogen = [...set.graph.elements.keys()].filter((atom) => set.graph.elements[atom] === 1);
     const made = await ask({ observable: "distance", atoms: [hydrogen[0]! + 1, 6], rule: "r-6" });

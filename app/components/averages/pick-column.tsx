@@ -162,9 +162,15 @@ export function PickColumn() {
             </div>
           ) : null}
           {kind === "distance" || kind === "coupling" ? (
-            <Checkbox name="merge" value="on" defaultChecked className="mt-3">
-              Average over equivalent atoms first (a methyl group, a ring side)
-            </Checkbox>
+            <>
+              <Checkbox name="merge" value="on" defaultChecked className="mt-3">
+                Average over equivalent atoms first (a methyl group, a ring side)
+              </Checkbox>
+              <p className="mt-1 max-w-read text-xs text-ink-3">
+                Without it the value is that of these very atoms as the files number them, in the hand that is
+                listed: where a shape stands for its mirror image too, only the average holds for both.
+              </p>
+            </>
           ) : null}
           <div className="mt-4 flex flex-wrap items-center gap-4">
             <SubmitButton

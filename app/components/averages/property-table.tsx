@@ -142,7 +142,7 @@ export function PropertyTable({
         </a>
         .{" "}
         {scalars.some(({ moments }) => moments.mirrored.some((flag) => flag === 1))
-          ? "A shape that stands for a mirror pair enters an angle half at t and half at −t, so that a mean of both hands lies at 0° or 180° whatever the energies."
+          ? "A shape that stands for a mirror pair enters an angle half at t and half at −t, one that is its own mirror image as its frame is numbered. Where every shape stands for a pair, the mean lies at 0° or 180° whatever the energies."
           : null}
       </p>
     </section>

@@ -244,7 +244,7 @@ function PlanCharts({
           <p>
             {hoursOpen(plan)
               ? "The core hours of a step are not known."
-              : "The energies of these steps are known: nothing is left to compute. Counted as if computed anew, by rules of thumb until you set your own timings, the chain shows what it costs for a molecule like this."}{" "}
+              : "The energies of these steps are known: nothing is left to compute. Counted as if computed anew, by rules of thumb where the name of a level says its kind of method and until you set your own timings, the chain shows what it costs for a molecule like this."}{" "}
             {hoursOpen(plan) ? "Set them under Each to see what a share of the population costs." : ""}
           </p>
         </StatePanel>

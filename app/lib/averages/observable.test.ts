@@ -72,6 +72,12 @@ describe("observables on a structure", () => {
       before,
       9,
     );
+    // Of these very atoms, wanted without their equivalents, the numbering of the file counts, as it does for a torsion.
+    const alone: Observable = { ...observable, tuples: [[three[0]!, 0]], rule: "linear", numbered: "file" };
+    const as = (positions: Float64Array) =>
+      observableValue(alone, reference.graph, positions, group.relabelling(positions));
+    expect(as(swapped)).toBeCloseTo(distance(swapped, three[0]!, 0), 12);
+    expect(fromDefinition(toDefinition(alone), "linear")).toEqual(alone);
   });
 
   it("couplings are averaged over torsions, not the torsion over couplings", () => {

@@ -30,6 +30,11 @@ export interface Observable {
    * Columns of before this was told apart, and atoms without such a chain, keep the picked torsion.
    */
   angle?: "phi";
+  /**
+   * "file" takes these very atoms as each frame numbers them, which have equivalent ones that nobody wanted averaged in:
+   * the same as a torsion of them does. Else hands tell in each frame which atoms are meant.
+   */
+  numbered?: "file";
 }
 
 export const OBSERVABLE_UNIT: Record<ObservableKind, string> = {
@@ -56,7 +61,7 @@ export interface ObservableDefinition {
 }
 
 export function toDefinition(observable: Observable): ObservableDefinition {
-  const { kind, tuples, rule, set, own, angle: from } = observable;
+  const { kind, tuples, rule, set, own, angle: from, numbered } = observable;
   return {
     type: "observable",
     observable: kind,
@@ -66,12 +71,13 @@ export function toDefinition(observable: Observable): ObservableDefinition {
       ...(set === null ? {} : { set }),
       ...(own ?? {}),
       ...(from === undefined ? {} : { angle: from }),
+      ...(numbered === undefined ? {} : { numbered }),
     },
   };
 }
 
 export function fromDefinition(definition: ObservableDefinition, rule: AverageRule): Observable {
-  const { a, b, c, set, angle: from } = definition.parameters;
+  const { a, b, c, set, angle: from, numbered } = definition.parameters;
   return {
     kind: definition.observable,
     tuples: definition.atoms.map((tuple) => tuple.map((atom) => atom - 1)),
@@ -79,6 +85,7 @@ export function fromDefinition(definition: ObservableDefinition, rule: AverageRu
     set: typeof set === "string" ? set : null,
     own: typeof a === "number" && typeof b === "number" && typeof c === "number" ? { a, b, c } : null,
     ...(from === "phi" ? { angle: from } : {}),
+    ...(numbered === "file" ? { numbered } : {}),
   };
 }
 
@@ -170,7 +177,8 @@ export function observableValue(
   relabel: ArrayLike<number> | null = null,
 ): number | null {
   // A torsion of one tuple means these very atoms; only sums over equivalent ones may be renumbered.
-  const renumber = relabel !== null && (observable.kind === "distance" || observable.kind === "coupling");
+  const sums = observable.kind === "distance" || observable.kind === "coupling";
+  const renumber = relabel !== null && sums && observable.numbered === undefined;
   const values: number[] = [];
   for (const tuple of observable.tuples) {
     const atoms = renumber ? tuple.map((atom) => relabel[atom]!) : tuple;

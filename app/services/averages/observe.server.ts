@@ -97,6 +97,12 @@ function tuplesOf(
   return orbit;
 }
 
+/** These very atoms, where they have equivalent ones that are not to be averaged in. */
+const alone = (request: ObservableRequest, path: readonly number[], group: ParityGroup | null) =>
+  (request.observable === "distance" || request.observable === "coupling") &&
+  !request.merge &&
+  group?.orbit(path)?.length !== 1;
+
 /**
  * Makes a distance, angle, torsion or coupling of picked atoms a property column, computed from the stored coordinates
  * of every frame; in the logbook.
@@ -125,6 +131,7 @@ export async function addObservable(options: {
     ...(request.observable === "coupling" && takesPhi(request.set ?? null, graph, path)
       ? { angle: "phi" as const }
       : {}),
+    ...(alone(request, path, group) ? { numbered: "file" as const } : {}),
   };
   const name = request.name ?? observableName(observable, graph.elements);
   const at = { teamId: grant.teamId, ensembleId: grant.ensembleId, userId: grant.userId };
