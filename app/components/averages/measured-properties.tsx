@@ -10,7 +10,7 @@ import { type AverageFacts, agreementCsv, besideCsv } from "~/lib/averages/measu
 import {
   besideProperties,
   type FigureBeside,
-  MEASURED_BELOW,
+  MEASURED_MOST,
   measuredPropertiesRecord,
   readPastedProperties,
 } from "~/lib/averages/measured-properties";
@@ -182,8 +182,8 @@ function FiguresTable({
                   className="w-24 max-sm:w-20 print:hidden"
                   value={measured}
                   optional
-                  min={-MEASURED_BELOW}
-                  max={MEASURED_BELOW}
+                  min={-MEASURED_MOST}
+                  max={MEASURED_MOST}
                   write={typed}
                   wrong="A number such as 7.20."
                   onCommit={(value) => set(name, value)}

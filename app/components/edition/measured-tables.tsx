@@ -13,7 +13,7 @@ import { EditionHead } from "./edition-head";
 /** Averages beside what was measured, each nucleus by itself, with the assignments chosen. */
 export function MeasuredTables({ edition }: { edition: EditionView }) {
   const { measured, measuredProperties: figures, temperature } = edition;
-  const any = measured.length > 0 || (figures !== null && figures !== undefined && figures.rows.length > 0);
+  const any = measured.length > 0 || (figures !== null && figures.rows.length > 0);
   if (!any || temperature === null) return null;
   return (
     <section className="mt-10" aria-labelledby="edition-measured">

@@ -10,15 +10,15 @@ export type PropertyMeasurements = ReadonlyMap<string, number>;
 /** The parameter of an address that holds a draft of them. */
 export const MEASURED_PROPERTIES_PARAM = "measp";
 
-/** Values that can be kept lie within this, either sign. */
-export const MEASURED_BELOW = 1e6;
+/** The largest value that can be kept, either sign. */
+export const MEASURED_MOST = 999_999;
 
 const NUMBER = /^[-+]?(\d+\.?\d*|\.\d+)(e[-+]?\d{1,2})?$/i;
 
 function numberOf(text: string | undefined): number | null {
   if (text === undefined || !NUMBER.test(text)) return null;
   const value = Number(text);
-  return Math.abs(value) < MEASURED_BELOW ? value : null;
+  return Math.abs(value) <= MEASURED_MOST ? value : null;
 }
 
 /**

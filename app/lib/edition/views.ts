@@ -121,7 +121,7 @@ export interface EditionView {
   /** Averages beside measured values; empty where nothing was measured. */
   measured: NonNullable<EditionContent["measured"]>;
   /** The same of properties of the whole molecule; null where none was measured. */
-  measuredProperties: EditionContent["measuredProperties"] | null;
+  measuredProperties: NonNullable<EditionContent["measuredProperties"]> | null;
   /** What each search found; null where all frames are of one. */
   searches: NonNullable<EditionContent["searches"]> | null;
   /** What was open when it was frozen. */

@@ -3,7 +3,7 @@ import { inTransaction, type Transaction } from "../../db/client.server.ts";
 import { columns } from "../../db/schema.server.ts";
 import { type MeasuredProperties, measuredPropertiesSchema } from "../../lib/averages/averaging.ts";
 import { MOST_MEASURED } from "../../lib/averages/measured.ts";
-import { MEASURED_BELOW, measuredPropertiesRecord } from "../../lib/averages/measured-properties.ts";
+import { MEASURED_MOST, measuredPropertiesRecord } from "../../lib/averages/measured-properties.ts";
 import { type Actor, accessEnsemble } from "../auth/access.server.ts";
 import { lockEnsemble, touchEnsemble } from "../columns/store-column.server.ts";
 import { findAveraging, storeAveraging } from "./averaging.server.ts";
@@ -14,7 +14,7 @@ function readValues(json: string): Map<string, number> {
   const read = measuredPropertiesSchema.safeParse(jsonSent(json));
   if (!read.success) throw refused("What was sent are no measured values. Load the page again.");
   const { values } = read.data;
-  if (values.some(([, value]) => !Number.isFinite(value) || Math.abs(value) >= MEASURED_BELOW)) {
+  if (values.some(([, value]) => !Number.isFinite(value) || Math.abs(value) > MEASURED_MOST)) {
     throw refused("A measured value is a number between −999,999 and 999,999.");
   }
   if (values.length > MOST_MEASURED) throw refused(`At most ${MOST_MEASURED} values can be kept.`);
